@@ -1,0 +1,417 @@
+"""The domain: what is known of a beam, its reinforcement, supports and loads.
+
+Frozen dataclasses only: no IFC, no formulas. Inside the program lengths are mm, forces N,
+stresses MPa, moments N*mm and angles rad. Local axes of a beam: x along the axis from its
+start, z up in the vertical plane, y to the left. In a section, z is measured up from the
+soffit and y from the middle of the outline's width.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, field
+from enum import StrEnum
+from typing import Literal
+
+Vector = tuple[float, float, float]
+Point = tuple[float, float]
+Ring = tuple[Point, ...]
+
+SourceName = Literal["schedule", "bars", "sections", "properties"]
+SupportKind = Literal["pinned", "fixed", "free"]
+Nature = Literal["permanent", "imposed", "crane", "snow", "wind"]
+CombinationKind = Literal["strength", "service"]
+LoadKind = Literal["line", "point", "moment"]
+Face = Literal["top", "bottom"]
+RemarkKind = Literal["assumption", "doubt", "note"]
+
+SELF = "self"
+"""Name of the case that self weight makes; reserved."""
+
+
+class Verdict(StrEnum):
+    """The three words that a beam may be given."""
+
+    ADEQUATE = "adequate"
+    FALLS_SHORT = "falls short"
+    NOT_RATED = "not rated"
+
+
+class Anchor(StrEnum):
+    """How a bar ends."""
+
+    STRAIGHT = "straight"
+    HOOK = "hook"
+    ANCHORED = "anchored"
+    """Stated or taken as fully anchored: the end is not modelled."""
+
+
+@dataclass(frozen=True, slots=True)
+class Remark:
+    """Something that the reader of a rating must know of one beam, or of the run (beam None)."""
+
+    beam: str | None
+    stage: str
+    text: str
+    kind: RemarkKind = "note"
+
+
+@dataclass(frozen=True, slots=True)
+class Reason:
+    """Why a beam is not rated. ``blocking``: nothing can be computed at all;
+    otherwise a utilisation above 1 still makes the beam fall short."""
+
+    text: str
+    blocking: bool = True
+
+
+@dataclass(frozen=True, slots=True)
+class Given:
+    """A number with the place that it came from; ``assumed`` where a default was used."""
+
+    value: float
+    source: str
+    assumed: bool = False
+
+
+@dataclass(frozen=True, slots=True)
+class Axis:
+    """The axis of a beam in the building: origin at the soffit's middle at the start [mm],
+    unit vectors, and the length [mm]."""
+
+    origin: Vector
+    x: Vector
+    y: Vector
+    z: Vector
+    length: float
+
+
+@dataclass(frozen=True, slots=True)
+class Outline:
+    """A section's outline: the outer ring, then any voids; points (y, z) [mm]."""
+
+    rings: tuple[Ring, ...]
+    name: str = ""
+
+
+@dataclass(frozen=True, slots=True)
+class Run:
+    """A stretch of a beam of one outline, or tapering linearly to ``outline_end``."""
+
+    start: float
+    end: float
+    outline: Outline
+    outline_end: Outline | None = None
+
+
+@dataclass(frozen=True, slots=True)
+class Bars:
+    """Equal longitudinal bars side by side in one layer, parallel to the axis."""
+
+    count: int
+    diameter: float
+    area: float
+    """Area of one bar [mm2]."""
+    start: float
+    end: float
+    z: float
+    """Height of the bar centres above the soffit [mm]."""
+    ys: tuple[float, ...]
+    """Place of each bar across the width [mm], y to the left; ``len(ys) == count``."""
+    yield_strength: Given | None = None
+    start_anchor: Anchor = Anchor.STRAIGHT
+    end_anchor: Anchor = Anchor.STRAIGHT
+    designation: str = ""
+    origin: str = ""
+    """The entity, property or schedule row that it was read from."""
+
+
+@dataclass(frozen=True, slots=True)
+class Stirrups:
+    """A set of equal stirrups, square to the axis, at one spacing from ``start`` to ``end``
+    (the stretch of the beam that they serve)."""
+
+    start: float
+    end: float
+    spacing: float
+    diameter: float
+    leg_area: float
+    """Area of one leg [mm2]."""
+    legs: int | None
+    """Legs that cross the section's height; None where nobody states it."""
+    closed: bool = True
+    yield_strength: Given | None = None
+    bottom: float | None = None
+    """Height of the lowest point of the stirrup's outside above the soffit [mm]."""
+    top: float | None = None
+    half_width: float | None = None
+    designation: str = ""
+    origin: str = ""
+
+
+@dataclass(frozen=True, slots=True)
+class BarGroup:
+    """Bars given by number and designation: one term of a bar notation."""
+
+    count: int
+    designation: str
+    diameter: float
+    area: float
+
+
+@dataclass(frozen=True, slots=True)
+class StirrupGroup:
+    """Stirrups given by notation; ``legs`` None where the text does not say."""
+
+    designation: str
+    diameter: float
+    area: float
+    spacing: float
+    legs: int | None
+
+
+@dataclass(frozen=True, slots=True)
+class DescribedZone:
+    """Reinforcement of a stretch of a beam given by notation, not by place.
+
+    ``None`` for a field means that the source does not speak of it; an empty tuple means
+    that it states that there is none.
+    """
+
+    start: float | None = None
+    end: float | None = None
+    top: tuple[BarGroup, ...] | None = None
+    bottom: tuple[BarGroup, ...] | None = None
+    side: tuple[BarGroup, ...] | None = None
+    stirrups: StirrupGroup | None = None
+    no_stirrups: bool = False
+    """True where the source states that there are none."""
+    cover: float | None = None
+    bar_yield: float | None = None
+    stirrup_yield: float | None = None
+    origin: str = ""
+
+
+@dataclass(frozen=True, slots=True)
+class Reinforcement:
+    """What one source says of a beam's reinforcement.
+
+    Physical sources fill ``bars`` and ``stirrups``; described sources fill ``zones`` and the
+    layout turns them into bars and stirrups. ``reasons`` tell what could not be read.
+    """
+
+    source: SourceName
+    bars: tuple[Bars, ...] = ()
+    stirrups: tuple[Stirrups, ...] = ()
+    zones: tuple[DescribedZone, ...] = ()
+    reasons: tuple[Reason, ...] = ()
+    remarks: tuple[Remark, ...] = ()
+
+
+@dataclass(frozen=True, slots=True)
+class Beam:
+    """One member in scope and all that the model says of it."""
+
+    key: str
+    """The GlobalId; where that is repeated, GlobalId~n with n counting from 2."""
+    guid: str
+    ordinal: int
+    """0 for the first beam with this GlobalId in file order, 1 for the second, ..."""
+    step_id: int
+    model: str
+    ifc_class: str
+    name: str
+    tag: str
+    type_name: str
+    storey: str
+    axis: Axis | None
+    runs: tuple[Run, ...]
+    material: str
+    concrete_strength: Given | None
+    concrete_density: Given | None
+    """Density of the concrete [kg/m3] where the model states it."""
+    cover: Given | None
+    reinforcement: tuple[Reinforcement, ...] = ()
+    """At most one entry per source, as found in the model (or added from the schedule)."""
+    reasons: tuple[Reason, ...] = ()
+    remarks: tuple[Remark, ...] = ()
+
+    @property
+    def mark(self) -> str:
+        """What people call the beam."""
+        return self.tag or self.name or self.key
+
+    @property
+    def length(self) -> float:
+        """Length along the axis [mm]; 0 where the body could not be read."""
+        return self.axis.length if self.axis else 0.0
+
+
+@dataclass(frozen=True, slots=True)
+class Box:
+    """An oriented box round a member's body: centre, three unit axes, half extents [mm]."""
+
+    centre: Vector
+    axes: tuple[Vector, Vector, Vector]
+    half: Vector
+
+
+@dataclass(frozen=True, slots=True)
+class Member:
+    """Any physical member of the building, for contacts and for the plan."""
+
+    step_id: int
+    guid: str
+    ifc_class: str
+    name: str
+    storey: str
+    box: Box
+
+
+@dataclass(frozen=True, slots=True)
+class OutOfScope:
+    """A beam that is left out on positive evidence."""
+
+    guid: str
+    step_id: int
+    name: str
+    storey: str
+    reason: str
+    """A short class of reason, counted in the summary: "steel", "timber", "footing" ..."""
+    evidence: str
+
+
+@dataclass(frozen=True, slots=True)
+class Storey:
+    """A storey and its elevation [mm]."""
+
+    name: str
+    elevation: float
+
+
+@dataclass(frozen=True, slots=True)
+class Model:
+    """What was read of one IFC model."""
+
+    name: str
+    """The file's stem."""
+    file_name: str
+    schema: str
+    sha256: str
+    """Hash of the bytes without any results of ours."""
+    beams: tuple[Beam, ...]
+    out_of_scope: tuple[OutOfScope, ...]
+    members: tuple[Member, ...]
+    """Every member with a readable box, beams included."""
+    storeys: tuple[Storey, ...]
+    remarks: tuple[Remark, ...] = ()
+
+
+@dataclass(frozen=True, slots=True)
+class Support:
+    """How one end of a beam stands."""
+
+    kind: SupportKind
+    bearing: float
+    """Width of the bearing along the axis [mm]; 0 where it is not given."""
+    source: str
+
+
+@dataclass(frozen=True, slots=True)
+class Span:
+    """A span of a line between two supports; places along x of the line [mm]."""
+
+    start: float
+    end: float
+    start_support: Support
+    end_support: Support
+
+
+@dataclass(frozen=True, slots=True)
+class Line:
+    """Beams that act as one member, and its spans."""
+
+    beams: tuple[str, ...]
+    spans: tuple[Span, ...]
+
+
+@dataclass(frozen=True, slots=True)
+class Contact:
+    """Where another member touches a beam: the stretch of x that it covers."""
+
+    beam: str
+    other: str
+    """Name and class of the other member, for people."""
+    other_class: str
+    start: float
+    end: float
+    place: Literal["start", "end", "between"]
+    side: Literal["below", "above", "side", "end"]
+
+
+@dataclass(frozen=True, slots=True)
+class Case:
+    """A load case of the brief."""
+
+    name: str
+    nature: Nature
+    category: str | None = None
+    rated: bool = False
+    excludes: tuple[str, ...] = ()
+    removable: bool = False
+
+
+@dataclass(frozen=True, slots=True)
+class Load:
+    """One load on one beam, vertical and positive downward, in the beam's own x.
+
+    line: intensity [N/mm] from ``values[0]`` at ``start`` to ``values[1]`` at ``end``;
+    point: force [N] ``values[0]`` at ``start``; moment: ``values[0]`` [N*mm] at ``start``,
+    positive where it turns the left part into sagging just left of it (anticlockwise seen
+    with x to the right and z up is negative).
+    """
+
+    beam: str
+    case: str
+    kind: LoadKind
+    start: float
+    end: float
+    values: tuple[float, float]
+    face: Face = "top"
+    origin: str = ""
+    text: str = ""
+    """What the brief says, for people: "60 kN at 2.1 m"."""
+
+
+@dataclass(frozen=True, slots=True)
+class Combination:
+    """Factors on the cases of a run: unfavourable and favourable, by case name."""
+
+    name: str
+    kind: CombinationKind
+    factors: dict[str, tuple[float, float]] = field(hash=False)
+
+
+Measure = Literal[
+    "label", "text", "identifier", "real", "logical", "length", "force", "line_force",
+    "moment", "pressure", "area",
+]  # fmt: skip
+
+
+@dataclass(frozen=True, slots=True)
+class ResultProperty:
+    """One property of a result set, in N, mm, MPa; ``logical`` takes True, False or None."""
+
+    name: str
+    measure: Measure
+    value: str | float | bool | None
+
+
+@dataclass(frozen=True, slots=True)
+class ResultSet:
+    """One property set to be written on one beam."""
+
+    step_id: int
+    guid: str
+    ordinal: int
+    name: str
+    properties: tuple[ResultProperty, ...]

@@ -1,0 +1,108 @@
+"""The arrays that formulas work on: one row per beam, per bar layer and per station."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, fields, replace
+from typing import Self
+
+import numpy as np
+import numpy.typing as npt
+
+Floats = npt.NDArray[np.float64]
+Ints = npt.NDArray[np.intp]
+Bools = npt.NDArray[np.bool_]
+
+ANCHOR_STRAIGHT, ANCHOR_HOOK, ANCHOR_FULL = 0, 1, 2
+
+
+@dataclass(frozen=True, slots=True)
+class Members:
+    """One row per beam (B), padded bar layers (B, L) and one row per section (K).
+
+    A layer is a set of equal bars at one height with the same ends. Padding layers have
+    area 0, diameter 1 and height 0.
+    """
+
+    concrete_strength: Floats
+    """f'c [MPa] (B)"""
+    density_factor: Floats
+    """lambda for low-density concrete, 1 for normal (B)"""
+    aggregate_size: Floats
+    """Nominal largest aggregate [mm] (B)"""
+    span: Floats
+    """Span for the effective flange width [mm] (B)"""
+    layer_height: Floats
+    """Bar centres above the soffit [mm] (B, L)"""
+    layer_area: Floats
+    """Area of all the bars of the layer [mm2] (B, L)"""
+    layer_diameter: Floats
+    """[mm] (B, L)"""
+    layer_yield: Floats
+    """[MPa] (B, L)"""
+    layer_start: Floats
+    """x of the bars' start [mm] (B, L); -inf is allowed"""
+    layer_end: Floats
+    layer_start_anchor: Ints
+    """ANCHOR_STRAIGHT, ANCHOR_HOOK or ANCHOR_FULL (B, L)"""
+    layer_end_anchor: Ints
+    layer_cover_distance: Floats
+    """dcs: least of the distance from bar centre to the nearest concrete surface and 2/3 of
+    the centre spacing in the layer [mm] (B, L)"""
+    strips: Floats
+    """Width profile: strips (z0, z1, w0, w1) from the soffit up [mm] (K, S, 4); padding strips
+    have z0 = z1 = top of the section and no width"""
+    overhang_left: Floats
+    """Overhang of the wider top flange beyond the web, to the left [mm] (K); 0 without one"""
+    overhang_right: Floats
+    flange_thickness: Floats
+    """Thickness of that flange [mm] (K); 0 without one"""
+
+
+@dataclass(frozen=True, slots=True)
+class Stations:
+    """Places along the beams, one row each (N), sorted by beam, then x, then side."""
+
+    beam: Ints
+    """Row of Members (N)"""
+    section: Ints
+    """Row of Members.strips (N)"""
+    x: Floats
+    """[mm] from the beam's start (N)"""
+    side: Ints
+    """-1 just left, +1 just right of x, 0 where nothing jumps (N)"""
+    stirrup_area: Floats
+    """Area of all legs that cross the section [mm2] (N); 0 where there are none, nan where
+    not known"""
+    stirrup_spacing: Floats
+    """[mm] (N); inf where there are none"""
+    stirrup_yield: Floats
+    """[MPa] (N)"""
+    inside: Bools
+    """Between the faces of the supports: where shear is checked (N)"""
+
+
+@dataclass(frozen=True, slots=True)
+class Demand:
+    """What acts at each station together; arrays of one shape (..., N).
+
+    Every field is linear in the factor of a rated case.
+    """
+
+    moment: Floats
+    """[N*mm], sagging positive"""
+    shear: Floats
+    """[N], positive when the left part pushes up"""
+    critical_shear: Floats
+    """The shear to check with: that at the critical section where the standard lets
+    stations nearer to the support use it, else ``shear`` itself [N]"""
+    peak_sagging: Floats
+    """Upper bound of the sagging moment anywhere on the beam in the combination [N*mm], >= 0"""
+    peak_hogging: Floats
+    """The same for hogging, as a positive number [N*mm]"""
+    can_sag: Bools
+    """Some arrangement of the loads puts the soffit in tension here"""
+    can_hog: Bools
+
+    def take(self, rows: Ints) -> Self:
+        """The same arrays at the given rows of the last axis."""
+        return replace(self, **{f.name: getattr(self, f.name)[..., rows] for f in fields(self)})

@@ -1,0 +1,16 @@
+"""Standards: each one is data and pure functions on arrays, found by entry point."""
+
+from ifccheck.standards.contract import (
+    CalculationLine,
+    Check,
+    LimitState,
+    Note,
+    Options,
+    Outside,
+    Prepared,
+    Standard,
+)
+
+__all__ = [
+    "CalculationLine", "Check", "LimitState", "Note", "Options", "Outside", "Prepared", "Standard",
+]  # fmt: skip

@@ -1,0 +1,130 @@
+"""What a standard must give. A standard is data plus pure functions; there is no base class."""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Sequence
+from dataclasses import dataclass
+from typing import Any, Protocol
+
+from ifccheck.beam import Case, Combination
+from ifccheck.mechanics.arrays import Bools, Demand, Floats, Ints, Members, Stations
+
+
+@dataclass(frozen=True, slots=True)
+class Options:
+    """Choices that the brief makes within a standard."""
+
+    shear_method: str
+
+
+class Prepared(Protocol):
+    """All that a standard needs of each station before demand is known.
+
+    A frozen dataclass whose array fields all have the stations as their first axis.
+    """
+
+    def take(self, rows: Ints) -> Prepared:
+        """The same at the given stations; rows may repeat."""
+        ...
+
+
+@dataclass(frozen=True, slots=True)
+class Outside:
+    """Where a check lies outside the validity of a clause; ``mask`` has the check's shape."""
+
+    clause: str
+    text: str
+    mask: Bools
+
+
+@dataclass(frozen=True, slots=True)
+class Check:
+    """A limit state evaluated at every station and arrangement; arrays of shape (..., N).
+
+    ``utilisation`` is 0 where nothing is demanded, inf where something is demanded of nothing,
+    nan outside validity or where an input is missing. ``details`` is a frozen dataclass of
+    named arrays of the same shape: what the calculation lines print.
+    """
+
+    demand: Floats
+    resistance: Floats
+    utilisation: Floats
+    outside: tuple[Outside, ...]
+    details: Any
+
+
+@dataclass(frozen=True, slots=True)
+class CalculationLine:
+    """One line of a calculation: ``symbol = formula`` gives the field of Check.details.
+
+    ``formula`` is Python arithmetic on the symbols of earlier lines (with sqrt, min, max, tan,
+    radians, where); "" for a given quantity. Values are in N, mm, MPa, rad unless ``unit`` is
+    "deg". ``when`` names a boolean field of details: the line is shown only where it is true.
+    """
+
+    symbol: str
+    text: str
+    """What it is, in words."""
+    formula: str
+    field: str
+    unit: str
+    """"N", "N*mm", "mm", "mm2", "MPa", "deg", "" ..."""
+    clause: str
+    when: str = ""
+
+
+@dataclass(frozen=True, slots=True)
+class LimitState:
+    """A way in which a beam can fall short."""
+
+    name: str
+    """As written to property sets: "FlexureSagging"."""
+    title: str
+    """For people: "flexure, sagging"."""
+    clause: str
+    covers: str
+    """The word used in "adequate in flexure and shear"."""
+    demand_unit: str
+    """"N*mm", "N" ..."""
+    linear: bool
+    """Demand is linear in the loads and resistance does not depend on them."""
+    check: Callable[[Any, Demand], Check]
+    lines: tuple[CalculationLine, ...]
+
+
+@dataclass(frozen=True, slots=True)
+class Note:
+    """A remark that the standard makes at some stations; ``mask`` (N)."""
+
+    clause: str
+    text: str
+    mask: Bools
+
+
+@dataclass(frozen=True, slots=True)
+class Standard:
+    """A published standard."""
+
+    id: str
+    title: str
+    edition: str
+    actions: str
+    """The document that the combinations come from, with its edition."""
+    shear_methods: tuple[str, ...]
+    """The first is the default."""
+    combinations: Callable[[Sequence[Case]], tuple[Combination, ...]]
+    """Strength (and service) combinations for the cases of a run, ``self`` included."""
+    clear_spacing: Callable[[float, float], float]
+    """Least clear distance [mm] between bars of a diameter, given the aggregate size."""
+    density_factor: Callable[[float | None], float]
+    """lambda for a concrete density [kg/m3]; None is normal density."""
+    prepare: Callable[[Members, Stations, Options], Any]
+    """Gives a Prepared."""
+    critical_distance: Callable[[Any], Floats]
+    """Distance of the critical section for shear from the face of a support, given a Prepared
+    at the faces [mm] (N)."""
+    limit_states: tuple[LimitState, ...]
+    notes: Callable[[Any], tuple[Note, ...]]
+    """Remarks on a Prepared, such as minimum reinforcement."""
+    basis: Callable[[Any], dict[str, Floats]]
+    """Named arrays (N) that the basis of a rating prints, such as effective depths."""
