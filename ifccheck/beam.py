@@ -238,7 +238,7 @@ class Beam:
     @property
     def mark(self) -> str:
         """What people call the beam."""
-        return self.tag or self.name or self.key
+        return self.name or self.tag or self.key
 
     @property
     def length(self) -> float:

@@ -1,4 +1,4 @@
-"""Utilisation, rating factor, largest safe load and verdict, on arrays."""
+"""What a rating says, for people, viewers and tables."""
 
 from __future__ import annotations
 

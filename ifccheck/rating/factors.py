@@ -1,0 +1,204 @@
+"""Rating factors of a rated case, for all beams together.
+
+The rating factor of a beam is the upper end of the interval from 0 throughout which every
+counted utilisation stays at or below 1 while the rated case's loads are multiplied and all
+else stays at its full value.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import dataclass, fields
+from typing import Any
+
+import numpy as np
+
+from ifccheck.mechanics.arrays import Bools, Demand, Floats, Ints
+from ifccheck.standards import LimitState
+
+GREATEST_FACTOR = 1000.0
+"""A case that does not govern up to this many times its loads is not limited."""
+_TOLERANCE = 1e-9
+_INTERIOR = (0.02, 0.1, 0.25, 0.5, 0.75)
+"""Fractions of the bracket at which elements that may not be monotone are looked at."""
+
+
+@dataclass(frozen=True, slots=True)
+class Factors:
+    """Rating factors of one case, one row per beam (B)."""
+
+    factor: Floats
+    """inf where not limited, 0 where the rest alone exceeds"""
+    state: Ints
+    """Row of the limit state that limits it, -1 where none does"""
+    element: Ints
+    """Flattened (arrangement, station) that limits it, -1 where none does"""
+
+
+@dataclass(frozen=True, slots=True)
+class _Problem:
+    """One limit state under a rated case, flattened to elements (E = arrangements x N)."""
+
+    state: LimitState
+    prepared: Any
+    rest: Demand
+    share: Demand
+    beam: Ints
+    """Beam of each station (N)"""
+
+    def utilisation(self, elements: Ints, factor: Floats) -> Floats:
+        """Utilisation at the elements; what cannot be worked out counts as exceeding."""
+        demand = _grown(_flat(self.rest, elements), _flat(self.share, elements), factor)
+        stations = elements % self.beam.size
+        found = self.state.check(self.prepared.take(stations), demand).utilisation
+        return np.where(np.isnan(found), np.inf, found)
+
+
+def rating_factors(
+    states: Sequence[LimitState],
+    prepared: Any,
+    total: Demand,
+    share: Demand,
+    beam: Ints,
+    beams: int,
+) -> Factors:
+    """Solve the rating factor of one case on all beams at once.
+
+    Parameters
+    ----------
+    states
+        The counted limit states.
+    prepared
+        The standard's arrays at the stations (N).
+    total, share
+        Demand of everything, and the part of it that the rated case makes (..., N).
+    beam
+        Beam of each station (N), ascending from 0.
+    beams
+        Number of beams (B).
+
+    Returns
+    -------
+    Factors
+        Accurate to 1e-8 relative.
+    """
+    rest = _less(total, share)
+    factor = np.full(beams, np.inf)
+    state_row = np.full(beams, -1, dtype=np.intp)
+    element = np.full(beams, -1, dtype=np.intp)
+    for row in sorted(range(len(states)), key=lambda i: not states[i].linear):
+        problem = _Problem(states[row], prepared, rest, share, beam)
+        found, at = _least_factor(problem, np.minimum(factor, GREATEST_FACTOR))
+        better = found < factor
+        factor[better], element[better], state_row[better] = found[better], at[better], row
+    return Factors(factor, state_row, element)
+
+
+def _least_factor(problem: _Problem, ceiling: Floats) -> tuple[Floats, Ints]:
+    """Least factor below ``ceiling`` at which this limit state exceeds 1, per beam; inf if none."""
+    elements = _touched(problem)
+    low, high = np.zeros_like(ceiling), ceiling.copy()
+    at = np.full(ceiling.size, -1, dtype=np.intp)
+    if elements.size == 0:
+        return np.full_like(ceiling, np.inf), at
+    beam = problem.beam[elements % problem.beam.size]
+    found = np.zeros(ceiling.size, dtype=np.bool_)
+    falls_at_once = problem.utilisation(elements, np.zeros(elements.size)) > 1.0
+    _mark(at, beam[falls_at_once], elements[falls_at_once])
+    high[at >= 0], found[at >= 0] = 0.0, True
+    over, brackets = _bracket(problem, elements, beam, high)
+    keep = over & ~found[beam]
+    elements, beam, brackets = elements[keep], beam[keep], brackets[keep]
+    _mark(at, beam, elements)
+    found[beam] = True
+    np.minimum.at(high, beam, brackets)
+    _bisect(problem, elements, beam, low, high, at)
+    return np.where(found, high, np.inf), at
+
+
+def _touched(problem: _Problem) -> Ints:
+    """Elements that the rated case changes, or that exceed without it."""
+    share = problem.share
+    moved = (share.moment != 0.0) | (share.shear != 0.0) | (share.critical_shear != 0.0)
+    stations = problem.beam.size
+    loaded = np.zeros(int(problem.beam[-1]) + 1, dtype=np.bool_)
+    loaded[problem.beam[np.any(moved.reshape(-1, stations), axis=0)]] = True
+    whole = np.broadcast_to(loaded[problem.beam], moved.shape)
+    return np.flatnonzero(whole.reshape(-1))
+
+
+def _bracket(problem: _Problem, elements: Ints, beam: Ints, high: Floats) -> tuple[Bools, Floats]:
+    """Which elements exceed at or below their beam's upper end, and where they were seen to."""
+    upper = high[beam].copy()
+    over = problem.utilisation(elements, upper) > 1.0
+    odd = np.flatnonzero(_may_turn(problem, elements))
+    for fraction in reversed(_INTERIOR):
+        trial = fraction * high[beam[odd]]
+        seen = problem.utilisation(elements[odd], trial) > 1.0
+        over[odd[seen]] = True
+        upper[odd[seen]] = trial[seen]
+    return over, upper
+
+
+def _may_turn(problem: _Problem, elements: Ints) -> Bools:
+    """Elements whose moment or shear is first relieved by the case, so that utilisation need
+    not rise throughout."""
+    rest, share = _flat(problem.rest, elements), _flat(problem.share, elements)
+    opposed = np.zeros(elements.size, dtype=np.bool_)
+    for name in ("moment", "shear", "critical_shear"):
+        opposed |= getattr(rest, name) * getattr(share, name) < 0.0
+    return opposed
+
+
+def _bisect(
+    problem: _Problem, elements: Ints, beam: Ints, low: Floats, high: Floats, at: Ints
+) -> None:
+    """Narrow every beam's bracket in place, keeping only elements that can still govern."""
+    while elements.size:
+        middle = 0.5 * (low + high)
+        over = problem.utilisation(elements, middle[beam]) > 1.0
+        exceeded = np.zeros(low.size, dtype=np.bool_)
+        exceeded[beam[over]] = True
+        _mark(at, beam[over], elements[over])
+        active = np.zeros(low.size, dtype=np.bool_)
+        active[beam] = True
+        high[active & exceeded] = middle[active & exceeded]
+        low[active & ~exceeded] = middle[active & ~exceeded]
+        open_ = high - low > _TOLERANCE * np.maximum(high, 1e-6)
+        keep = open_[beam] & (over | ~exceeded[beam])
+        elements, beam = elements[keep], beam[keep]
+
+
+def _mark(at: Ints, beam: Ints, elements: Ints) -> None:
+    """Keep, for each beam, the first of the elements."""
+    at[beam[::-1]] = elements[::-1]
+
+
+def _flat(demand: Demand, elements: Ints) -> Demand:
+    shape = demand.moment.shape
+    return Demand(
+        **{
+            f.name: np.broadcast_to(getattr(demand, f.name), shape).reshape(-1)[elements]
+            for f in fields(demand)
+        }
+    )
+
+
+def _less(total: Demand, share: Demand) -> Demand:
+    return _linear(total, share, lambda whole, part: whole - part)
+
+
+def _grown(rest: Demand, share: Demand, factor: Floats) -> Demand:
+    return _linear(rest, share, lambda base, part: base + factor * part)
+
+
+def _linear(first: Demand, second: Demand, join: Any) -> Demand:
+    return Demand(
+        **{
+            f.name: join(getattr(first, f.name), getattr(second, f.name))
+            for f in fields(first)
+            if not f.name.startswith("can_")
+        },
+        can_sag=first.can_sag | second.can_sag,
+        can_hog=first.can_hog | second.can_hog,
+    )
