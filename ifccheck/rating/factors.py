@@ -37,7 +37,7 @@ class Factors:
 
 @dataclass(frozen=True, slots=True)
 class _Problem:
-    """One limit state under a rated case, flattened to elements (E = arrangements x N)."""
+    """One limit state under a rated case; elements flatten (arrangements, N)."""
 
     state: LimitState
     prepared: Any
@@ -46,11 +46,25 @@ class _Problem:
     beam: Ints
     """Beam of each station (N)"""
 
-    def utilisation(self, elements: Ints, factor: Floats) -> Floats:
-        """Utilisation at the elements; what cannot be worked out counts as exceeding."""
-        demand = _grown(_flat(self.rest, elements), _flat(self.share, elements), factor)
-        stations = elements % self.beam.size
-        found = self.state.check(self.prepared.take(stations), demand).utilisation
+    def everywhere(self, factor: Floats) -> Floats:
+        """Utilisation of every element, each beam at its own factor (B)."""
+        return self._utilisation(self.prepared, self.rest, self.share, factor[self.beam]).reshape(
+            -1
+        )
+
+    def at(self, elements: Ints, factor: Floats) -> Floats:
+        """Utilisation at the elements, each at its own factor."""
+        prepared = self.prepared.take(self.station(elements))
+        rest, share = _flat(self.rest, elements), _flat(self.share, elements)
+        return self._utilisation(prepared, rest, share, factor)
+
+    def station(self, elements: Ints) -> Ints:
+        """Station of each element."""
+        return elements % self.beam.size
+
+    def _utilisation(self, prepared: Any, rest: Demand, share: Demand, factor: Floats) -> Floats:
+        """What cannot be worked out counts as exceeding."""
+        found = self.state.check(prepared, _grown(rest, share, factor)).utilisation
         return np.where(np.isnan(found), np.inf, found)
 
 
@@ -95,59 +109,54 @@ def rating_factors(
 
 
 def _least_factor(problem: _Problem, ceiling: Floats) -> tuple[Floats, Ints]:
-    """Least factor below ``ceiling`` at which this limit state exceeds 1, per beam; inf if none."""
-    elements = _touched(problem)
-    low, high = np.zeros_like(ceiling), ceiling.copy()
+    """Least factor below ``ceiling`` at which this limit state exceeds 1, per beam; inf if none.
+
+    Where utilisation need not rise throughout, the bracket is looked into at several places.
+    """
     at = np.full(ceiling.size, -1, dtype=np.intp)
-    if elements.size == 0:
-        return np.full_like(ceiling, np.inf), at
-    beam = problem.beam[elements % problem.beam.size]
-    found = np.zeros(ceiling.size, dtype=np.bool_)
-    falls_at_once = problem.utilisation(elements, np.zeros(elements.size)) > 1.0
-    _mark(at, beam[falls_at_once], elements[falls_at_once])
-    high[at >= 0], found[at >= 0] = 0.0, True
-    over, brackets = _bracket(problem, elements, beam, high)
-    keep = over & ~found[beam]
-    elements, beam, brackets = elements[keep], beam[keep], brackets[keep]
+    low, high = np.zeros_like(ceiling), ceiling.copy()
+    reached = _reached(problem, ceiling.size)
+    at_once = np.flatnonzero((problem.everywhere(low) > 1.0) & reached)
+    _mark(at, problem.beam[problem.station(at_once)], at_once)
+    high[at >= 0] = 0.0
+    over = (problem.everywhere(high) > 1.0) & reached
+    upper = _look_inside(problem, over, np.flatnonzero(_may_turn(problem) & reached), high)
+    elements = np.flatnonzero(over)
+    beam = problem.beam[problem.station(elements)]
+    elements, beam = elements[high[beam] > 0.0], beam[high[beam] > 0.0]
     _mark(at, beam, elements)
-    found[beam] = True
-    np.minimum.at(high, beam, brackets)
+    np.minimum.at(high, beam, upper[elements])
     _bisect(problem, elements, beam, low, high, at)
-    return np.where(found, high, np.inf), at
+    return np.where(at >= 0, high, np.inf), at
 
 
-def _touched(problem: _Problem) -> Ints:
-    """Elements that the rated case changes, or that exceed without it."""
+def _reached(problem: _Problem, beams: int) -> Bools:
+    """Elements of the beams that the rated case acts on."""
     share = problem.share
-    moved = (share.moment != 0.0) | (share.shear != 0.0) | (share.critical_shear != 0.0)
-    stations = problem.beam.size
-    loaded = np.zeros(int(problem.beam[-1]) + 1, dtype=np.bool_)
-    loaded[problem.beam[np.any(moved.reshape(-1, stations), axis=0)]] = True
-    whole = np.broadcast_to(loaded[problem.beam], moved.shape)
-    return np.flatnonzero(whole.reshape(-1))
+    moved = (share.moment != 0.0) | (share.shear != 0.0)
+    reached = np.zeros(beams, dtype=np.bool_)
+    reached[problem.beam[np.any(moved.reshape(-1, problem.beam.size), axis=0)]] = True
+    return np.broadcast_to(reached[problem.beam], moved.shape).reshape(-1)
 
 
-def _bracket(problem: _Problem, elements: Ints, beam: Ints, high: Floats) -> tuple[Bools, Floats]:
-    """Which elements exceed at or below their beam's upper end, and where they were seen to."""
-    upper = high[beam].copy()
-    over = problem.utilisation(elements, upper) > 1.0
-    odd = np.flatnonzero(_may_turn(problem, elements))
+def _may_turn(problem: _Problem) -> Bools:
+    """Elements whose moment or shear the case first relieves."""
+    opposed = np.zeros(problem.rest.moment.shape, dtype=np.bool_)
+    for name in ("moment", "shear", "critical_shear"):
+        opposed |= getattr(problem.rest, name) * getattr(problem.share, name) < 0.0
+    return opposed.reshape(-1)
+
+
+def _look_inside(problem: _Problem, over: Bools, odd: Ints, high: Floats) -> Floats:
+    """Mark in ``over`` the odd elements that exceed within the bracket; where each was seen to."""
+    upper = np.broadcast_to(high[problem.beam], problem.rest.moment.shape).reshape(-1).copy()
+    beam = problem.beam[problem.station(odd)]
     for fraction in reversed(_INTERIOR):
-        trial = fraction * high[beam[odd]]
-        seen = problem.utilisation(elements[odd], trial) > 1.0
+        trial = fraction * high[beam]
+        seen = problem.at(odd, trial) > 1.0
         over[odd[seen]] = True
         upper[odd[seen]] = trial[seen]
-    return over, upper
-
-
-def _may_turn(problem: _Problem, elements: Ints) -> Bools:
-    """Elements whose moment or shear is first relieved by the case, so that utilisation need
-    not rise throughout."""
-    rest, share = _flat(problem.rest, elements), _flat(problem.share, elements)
-    opposed = np.zeros(elements.size, dtype=np.bool_)
-    for name in ("moment", "shear", "critical_shear"):
-        opposed |= getattr(rest, name) * getattr(share, name) < 0.0
-    return opposed
+    return upper
 
 
 def _bisect(
@@ -156,7 +165,7 @@ def _bisect(
     """Narrow every beam's bracket in place, keeping only elements that can still govern."""
     while elements.size:
         middle = 0.5 * (low + high)
-        over = problem.utilisation(elements, middle[beam]) > 1.0
+        over = problem.at(elements, middle[beam]) > 1.0
         exceeded = np.zeros(low.size, dtype=np.bool_)
         exceeded[beam[over]] = True
         _mark(at, beam[over], elements[over])
