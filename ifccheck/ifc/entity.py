@@ -1,0 +1,48 @@
+"""Reading attributes of IFC entities quickly.
+
+``entity.Name`` costs about ten times ``entity[2]``; in a model of fifty thousand bars that
+difference is longer than opening the file. The position of an attribute is looked up once per
+class and kept.
+"""
+
+from __future__ import annotations
+
+from typing import Any
+
+Entity = Any
+"""An ifcopenshell entity instance, or a defined value such as IfcLabel."""
+
+NO_SUCH_ATTRIBUTE = 0xFFFFFFFF
+
+_positions: dict[tuple[str, str], int | None] = {}
+
+
+class UnreadableError(Exception):
+    """Something in the model cannot be read surely; the text tells people what."""
+
+
+def get(entity: Entity, name: str) -> Any:
+    """Return the attribute of that name, None where it is empty or the schema has none."""
+    key = (entity.is_a(True), name)
+    try:
+        position = _positions[key]
+    except KeyError:
+        found = entity.get_argument_index(name)
+        position = _positions[key] = None if found == NO_SUCH_ATTRIBUTE else found
+    return None if position is None else entity[position]
+
+
+def text(entity: Entity, name: str) -> str:
+    """Return a text attribute, empty where it is not given."""
+    value = get(entity, name)
+    return value.strip() if isinstance(value, str) else ""
+
+
+def several(entity: Entity, name: str) -> tuple[Entity, ...]:
+    """Return a list attribute, empty where it is not given."""
+    return get(entity, name) or ()
+
+
+def label(entity: Entity) -> str:
+    """Name an entity for people: ``#12 IfcBeam``."""
+    return f"#{entity.id()} {entity.is_a()}"

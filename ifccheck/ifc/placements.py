@@ -1,0 +1,187 @@
+"""Placements as 4 x 4 matrices in mm: local, on a grid, and along a line."""
+
+from __future__ import annotations
+
+from typing import Any
+
+import numpy as np
+import numpy.typing as npt
+
+from ifccheck.ifc.entity import Entity, UnreadableError, get, label, several
+
+Matrix = npt.NDArray[np.float64]
+
+IDENTITY: Matrix = np.eye(4)
+IDENTITY.flags.writeable = False
+PARALLEL = 1e-9
+"""Sine of the angle below which two directions count as parallel."""
+
+
+class Placements:
+    """The placements of a model's products, each worked out once."""
+
+    def __init__(self, file: Any, scale: float) -> None:
+        self._file = file
+        self._scale = scale
+        self._objects: dict[int, Matrix] = {}
+        self._axes: dict[int, Matrix] = {}
+        self._grid_of_axis: dict[int, Entity] | None = None
+
+    def matrix(self, product: Entity) -> Matrix:
+        """Return the placement of a product in the building [mm]."""
+        placement = get(product, "ObjectPlacement")
+        return IDENTITY if placement is None else self.placement(placement)
+
+    def placement(self, placement: Entity) -> Matrix:
+        """Return an object placement in the building [mm]."""
+        chain: list[Entity] = []
+        known: Matrix = IDENTITY
+        step: Entity | None = placement
+        while step is not None:
+            step_id = step.id()
+            if step_id in self._objects:
+                known = self._objects[step_id]
+                break
+            if any(step_id == earlier.id() for earlier in chain):
+                raise UnreadableError(f"placement {label(placement)} refers to itself")
+            chain.append(step)
+            step = get(step, "PlacementRelTo")
+        for step in reversed(chain):
+            known = self._objects[step.id()] = self._placed(step, known)
+        return known
+
+    def _placed(self, placement: Entity, parent: Matrix) -> Matrix:
+        if placement.is_a("IfcLocalPlacement"):
+            relative = get(placement, "RelativePlacement")
+            own = IDENTITY if relative is None else self.axes(relative)
+            return parent if own is IDENTITY else parent @ own
+        if placement.is_a("IfcGridPlacement"):
+            return self._on_grid(placement, parent)
+        position = get(placement, "CartesianPosition")
+        if position is None:
+            raise UnreadableError(
+                f"placement is an {placement.is_a()} without a Cartesian position"
+            )
+        return parent @ self.axes(position)
+
+    def axes(self, position: Entity | None) -> Matrix:
+        """Return an axis placement of two or three dimensions [mm]; None is the identity."""
+        if position is None:
+            return IDENTITY
+        step_id = position.id()
+        if step_id not in self._axes:
+            self._axes[step_id] = self._read_axes(position)
+        return self._axes[step_id]
+
+    def _read_axes(self, position: Entity) -> Matrix:
+        location = get(position, "Location")
+        if not location.is_a("IfcCartesianPoint"):
+            raise UnreadableError(f"{label(position)} lies at an {location.is_a()}")
+        origin = location[0]
+        if position.is_a("IfcAxis2Placement2D"):
+            axis, reference = None, get(position, "RefDirection")
+        elif position.is_a("IfcAxis2Placement3D"):
+            axis, reference = position[1], position[2]
+        else:
+            raise UnreadableError(f"{label(position)} is no axis placement that is read")
+        if axis is None and reference is None and not any(origin):
+            return IDENTITY
+        matrix = rigid(
+            None if axis is None else axis[0], None if reference is None else reference[0]
+        )
+        for row, coordinate in enumerate(origin):
+            matrix[row, 3] = coordinate * self._scale
+        return matrix
+
+    def _on_grid(self, placement: Entity, parent: Matrix) -> Matrix:
+        intersection = get(placement, "PlacementLocation")
+        axes = several(intersection, "IntersectingAxes")
+        if len(axes) != 2:
+            raise UnreadableError(f"{label(placement)} does not name two grid axes")
+        grid = self._grid(axes[0])
+        grid_matrix = self.matrix(grid)
+        lines = [self._grid_line(axis) for axis in axes]
+        offsets = [value * self._scale for value in several(intersection, "OffsetDistances")]
+        point = cross(lines[0], lines[1], offsets)
+        height = offsets[2] if len(offsets) > 2 else 0.0
+        matrix = self._grid_direction(placement, lines[0])
+        matrix[:3, 3] = (*point, height)
+        del parent  # its axes are the grid's own: the grid's placement is the one that counts
+        return np.asarray(grid_matrix @ matrix)
+
+    def _grid_direction(self, placement: Entity, first: Matrix) -> Matrix:
+        reference = get(placement, "PlacementRefDirection")
+        if reference is None:
+            along = first[1] - first[0]
+            return rigid(None, (along[0], along[1], 0.0))
+        if reference.is_a("IfcDirection"):
+            return rigid(None, reference[0])
+        raise UnreadableError(f"{label(placement)} takes its direction from a second intersection")
+
+    def _grid(self, axis: Entity) -> Entity:
+        if self._grid_of_axis is None:
+            self._grid_of_axis = {
+                member.id(): grid
+                for grid in self._file.by_type("IfcGrid")
+                for name in ("UAxes", "VAxes", "WAxes")
+                for member in several(grid, name)
+            }
+        try:
+            return self._grid_of_axis[axis.id()]
+        except KeyError:
+            raise UnreadableError(f"{label(axis)} belongs to no grid") from None
+
+    def _grid_line(self, axis: Entity) -> Matrix:
+        curve = get(axis, "AxisCurve")
+        if not curve.is_a("IfcPolyline") or len(curve[0]) != 2:
+            raise UnreadableError(f"grid axis {label(axis)} is no straight polyline")
+        ends = [point[0][:2] for point in curve[0]]
+        line = np.array(ends if get(axis, "SameSense") is not False else ends[::-1], dtype=float)
+        return line * self._scale
+
+
+def rigid(axis: Any, reference: Any) -> Matrix:
+    """Return the rotation whose z is ``axis`` and whose x is nearest to ``reference``.
+
+    Missing or parallel directions are replaced as the standard ISO 10303-42 lays down.
+    """
+    z = unit(axis) if axis is not None else np.array((0.0, 0.0, 1.0))
+    x = unit(reference) if reference is not None else np.array((1.0, 0.0, 0.0))
+    x = x - (x @ z) * z
+    if x @ x < PARALLEL**2:
+        x = np.array((1.0, 0.0, 0.0)) if abs(z[0]) < 0.9 else np.array((0.0, 1.0, 0.0))
+        x = x - (x @ z) * z
+    x /= np.sqrt(x @ x)
+    matrix = np.eye(4)
+    matrix[:3, 0] = x
+    matrix[:3, 1] = (
+        z[1] * x[2] - z[2] * x[1],
+        z[2] * x[0] - z[0] * x[2],
+        z[0] * x[1] - z[1] * x[0],
+    )
+    matrix[:3, 2] = z
+    return matrix
+
+
+def unit(direction: Any) -> npt.NDArray[np.float64]:
+    """Return a direction of two or three ratios as a unit vector in space."""
+    vector = np.zeros(3)
+    vector[: len(direction)] = direction
+    length = float(np.sqrt(vector @ vector))
+    if not np.isfinite(length) or length == 0.0:
+        raise UnreadableError("a direction of no length")
+    return vector / length
+
+
+def cross(first: Matrix, second: Matrix, offsets: list[float]) -> tuple[float, float]:
+    """Return where two grid lines cross, each moved to its left by its offset [mm]."""
+    moved = []
+    for line, offset in zip((first, second), [*offsets, 0.0, 0.0], strict=False):
+        along = (line[1] - line[0]) / np.hypot(*(line[1] - line[0]))
+        moved.append((line[0] + offset * np.array((-along[1], along[0])), along))
+    (p, u), (q, v) = moved
+    sine = u[0] * v[1] - u[1] * v[0]
+    if abs(sine) < PARALLEL:
+        raise UnreadableError("two parallel grid axes do not cross")
+    reach = ((q[0] - p[0]) * v[1] - (q[1] - p[1]) * v[0]) / sine
+    return float(p[0] + reach * u[0]), float(p[1] + reach * u[1])

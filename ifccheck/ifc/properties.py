@@ -1,0 +1,155 @@
+"""Property and quantity sets, read only for the objects that are asked about."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator, Mapping
+from dataclasses import dataclass
+from typing import Any
+
+from ifccheck.ifc.entity import Entity, UnreadableError, get, several, text
+from ifccheck.ifc.relations import Relations
+from ifccheck.ifc.units import MEASURE_KINDS, ModelUnits, UnitKind, scale_of
+
+MECHANICAL = "IfcMechanicalMaterialProperties"
+
+
+@dataclass(frozen=True, slots=True)
+class PropertyValue:
+    """One value of a set, as the model gives it."""
+
+    value: Any
+    """str, float, int, bool or None; a tuple where the property holds several values."""
+    measure: str
+    """Name of its measure type, such as "IfcLengthMeasure"; "" where there is no value."""
+    factor: float | None
+    """Times ``value`` gives N, mm, MPa, rad, kg/m3; None where it has no unit, or one that
+    contradicts its measure."""
+    entity: int
+    kind: UnitKind | None = None
+
+    @property
+    def number(self) -> float | None:
+        """The value in the units used inside; None where it is no number with a unit."""
+        if self.factor is None or isinstance(self.value, bool):
+            return None
+        return self.value * self.factor if isinstance(self.value, int | float) else None
+
+
+Set = Mapping[str, PropertyValue]
+Sets = Mapping[str, Set]
+
+
+class Properties:
+    """The property sets of a model's objects, read on demand and kept."""
+
+    def __init__(self, file: Any, units: ModelUnits, relations: Relations) -> None:
+        self._file = file
+        self._units = units
+        self._relations = relations
+        self._by_object: dict[int, Sets] = {}
+        self._by_set: dict[int, tuple[str, Set]] = {}
+
+    def of(self, step_id: int) -> Sets:
+        """Return the sets of an object by name; its own values go before those of its type."""
+        if step_id not in self._by_object:
+            self._by_object[step_id] = self._read(self._relations.property_sets(step_id))
+        return self._by_object[step_id]
+
+    def of_material(self, material_id: int) -> Sets:
+        """Return the property sets of a material."""
+        return self._read(tuple(self._relations.material_properties.get(material_id, ())))
+
+    def _read(self, set_ids: tuple[int, ...]) -> Sets:
+        sets: dict[str, dict[str, PropertyValue]] = {}
+        for set_id in set_ids:
+            name, values = self._set(set_id)
+            known = sets.setdefault(name, {})
+            for key, value in values.items():
+                known.setdefault(key, value)
+        return sets
+
+    def _set(self, set_id: int) -> tuple[str, Set]:
+        if set_id not in self._by_set:
+            entity = self._file.by_id(set_id)
+            name = text(entity, "Name") or entity.is_a()
+            self._by_set[set_id] = (name, dict(self._values(entity)))
+        return self._by_set[set_id]
+
+    def _values(self, entity: Entity) -> Iterator[tuple[str, PropertyValue]]:
+        if entity.is_a("IfcElementQuantity"):
+            for quantity in several(entity, "Quantities"):
+                yield text(quantity, "Name"), self._quantity(quantity)
+            return
+        held = "Properties" if entity.is_a("IfcMaterialProperties") else "HasProperties"
+        held = "ExtendedProperties" if entity.is_a("IfcExtendedMaterialProperties") else held
+        for item in several(entity, held):
+            yield from self._property(item, "")
+        if entity.is_a(MECHANICAL) or entity.is_a("IfcGeneralMaterialProperties"):
+            yield from self._attributes(entity)
+
+    def _property(self, item: Entity, prefix: str) -> Iterator[tuple[str, PropertyValue]]:
+        name = prefix + text(item, "Name")
+        if item.is_a("IfcComplexProperty"):
+            for inner in several(item, "HasProperties"):
+                yield from self._property(inner, name + ".")
+        elif item.is_a("IfcPropertySingleValue"):
+            yield name, self._value(item, get(item, "NominalValue"), get(item, "Unit"))
+        elif item.is_a("IfcPropertyListValue"):
+            yield name, self._list(item, several(item, "ListValues"), get(item, "Unit"))
+        elif item.is_a("IfcPropertyEnumeratedValue"):
+            yield name, self._list(item, several(item, "EnumerationValues"), None)
+        elif item.is_a("IfcPropertyBoundedValue"):
+            bounds = [get(item, "LowerBoundValue"), get(item, "UpperBoundValue")]
+            given = tuple(bound for bound in bounds if bound is not None)
+            yield name, self._list(item, given, get(item, "Unit"))
+
+    def _value(self, item: Entity, wrapped: Entity | None, unit: Entity | None) -> PropertyValue:
+        if wrapped is None:
+            return PropertyValue(None, "", None, item.id())
+        measure = wrapped.is_a()
+        kind, factor = self._scale(measure, unit)
+        return PropertyValue(wrapped[0], measure, factor, item.id(), kind)
+
+    def _list(
+        self, item: Entity, wrapped: tuple[Entity, ...], unit: Entity | None
+    ) -> PropertyValue:
+        if len(wrapped) < 2:
+            return self._value(item, wrapped[0] if wrapped else None, unit)
+        first = self._value(item, wrapped[0], unit)
+        values = tuple(entity[0] for entity in wrapped)
+        return PropertyValue(values, first.measure, first.factor, item.id(), first.kind)
+
+    def _quantity(self, quantity: Entity) -> PropertyValue:
+        measure = quantity.is_a()
+        if not quantity.is_a("IfcPhysicalSimpleQuantity"):
+            return PropertyValue(None, measure, None, quantity.id())
+        kind, factor = self._scale(measure, get(quantity, "Unit"))
+        return PropertyValue(quantity[3], measure, factor, quantity.id(), kind)
+
+    def _scale(self, measure: str, unit: Entity | None) -> tuple[UnitKind | None, float | None]:
+        kind = MEASURE_KINDS.get(measure)
+        if unit is None:
+            return kind, self._units.of_measure(measure)
+        try:
+            own_kind, factor = scale_of(unit)
+        except UnreadableError:
+            return kind, None
+        if kind is not None and own_kind != kind:
+            return kind, None  # a length in newtons: nobody can tell what is meant
+        return own_kind, factor
+
+    def _attributes(self, entity: Entity) -> Iterator[tuple[str, PropertyValue]]:
+        """IFC2X3 keeps the common material values in attributes, not in properties."""
+        for name, kind in (
+            ("CompressiveStrength", "pressure"),
+            ("YoungModulus", "pressure"),
+            ("MassDensity", "density"),
+        ):
+            value = get(entity, name)
+            if value is not None:
+                measure = "IfcPressureMeasure" if kind == "pressure" else "IfcMassDensityMeasure"
+                factor = self._units.of_measure(measure)
+                yield (
+                    name,
+                    PropertyValue(value, measure, factor, entity.id(), MEASURE_KINDS[measure]),
+                )
