@@ -1,0 +1,51 @@
+"""A beam with everything that its rating rests on, gathered before any number is worked out."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+from ifccheck.beam import Bars, Beam, Given, Line, Load, Reason, Remark, Span, Stirrups
+
+
+@dataclass(frozen=True, slots=True)
+class Subject:
+    """One beam of the run, ready to be rated.
+
+    ``reasons`` that are not blocking leave the numbers computable, but the beam cannot be
+    called adequate.
+    """
+
+    beam: Beam
+    line: Line
+    bars: tuple[Bars, ...]
+    stirrups: tuple[Stirrups, ...]
+    stirrups_known: bool
+    """False where no source says whether there are stirrups"""
+    reinforcement_source: str
+    loads: tuple[Load, ...]
+    """Without self weight"""
+    concrete_strength: Given
+    unit_weight: Given
+    """Of the concrete with its steel, for self weight [N/mm3]"""
+    density_factor: Given
+    aggregate_size: Given
+    bar_yield: tuple[Given, ...]
+    """One for each entry of ``bars``"""
+    stirrup_yield: tuple[Given, ...]
+    """One for each entry of ``stirrups``"""
+    reasons: tuple[Reason, ...]
+    remarks: tuple[Remark, ...]
+
+    @property
+    def span(self) -> Span:
+        """The span that the beam makes."""
+        return self.line.spans[0]
+
+
+@dataclass(frozen=True, slots=True)
+class Unrated:
+    """A beam of which no number can be worked out, and why."""
+
+    beam: Beam
+    reasons: tuple[Reason, ...]
+    remarks: tuple[Remark, ...]

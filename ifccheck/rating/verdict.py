@@ -1,0 +1,163 @@
+"""The verdict of each beam from its limit states, and the words that go with it."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Sequence
+from dataclasses import dataclass
+
+import numpy as np
+
+from ifccheck.beam import Combination, Load, Reason, Verdict
+from ifccheck.mechanics.arrays import Floats
+from ifccheck.rating.factors import Factors
+from ifccheck.rating.results import LimitStateRating, SafeLoad
+from ifccheck.rating.utilisation import Worst
+from ifccheck.standards import Check, LimitState
+from ifccheck.units import show, show_ratio
+
+_UNKNOWN_CASE = "cannot be said: the beam is not rated"
+
+
+@dataclass(frozen=True, slots=True)
+class Evaluated:
+    """One limit state on all beams of a batch."""
+
+    state: LimitState
+    check: Check
+    worst: Worst
+
+
+@dataclass(frozen=True, slots=True)
+class Places:
+    """What an element (arrangement, station) of a batch stands for."""
+
+    combinations: tuple[Combination, ...]
+    arrangements: int
+    """Arrangements of each combination"""
+    x: Floats
+    """Stations (N)"""
+
+    def combination(self, element: int) -> str:
+        """Name of the combination of an element."""
+        return self.combinations[element // self.x.size // self.arrangements].name
+
+    def position(self, element: int) -> float:
+        """x of an element [mm]."""
+        return float(self.x[element % self.x.size])
+
+
+def limit_state_rating(found: Evaluated, beam: int, places: Places) -> LimitStateRating:
+    """What one limit state says of one beam (a row of the batch).
+
+    A nan at any station makes the whole limit state nan, unless another station exceeds 1.
+    """
+    worst, state, check = found.worst, found.state, found.check
+    utilisation = float(worst.utilisation[beam])
+    incomplete = bool(worst.incomplete[beam]) and utilisation <= 1.0
+    element = int((worst.incomplete_element if incomplete else worst.element)[beam])
+    demanded = incomplete or utilisation > 0.0
+    return LimitStateRating(
+        name=state.name,
+        title=state.title,
+        covers=state.covers,
+        utilisation=math.nan if incomplete else utilisation,
+        position=places.position(element) if demanded else math.nan,
+        combination=places.combination(element) if demanded else "",
+        demand=_at(check.demand, check, element) if demanded else 0.0,
+        resistance=_at(check.resistance, check, element) if demanded else math.nan,
+        demand_unit=state.demand_unit,
+        clause=state.clause,
+        counted=True,
+        why_not=_why_not(check, element) if incomplete else "",
+    )
+
+
+def _at(values: Floats, check: Check, element: int) -> float:
+    return float(np.broadcast_to(values, check.utilisation.shape).reshape(-1)[element])
+
+
+def _why_not(check: Check, element: int) -> str:
+    for outside in check.outside:
+        mask = np.broadcast_to(outside.mask, check.utilisation.shape).reshape(-1)
+        if mask[element]:
+            return f"outside {outside.clause}: {outside.text}"
+    return "an input is missing"
+
+
+def governing_of(states: Sequence[LimitStateRating]) -> LimitStateRating | None:
+    """The counted limit state of greatest utilisation, of those that have one."""
+    known = [s for s in states if s.counted and s.utilisation > 0.0]
+    return max(known, key=lambda s: s.utilisation, default=None)
+
+
+def verdict_of(states: Sequence[LimitStateRating], reasons: Sequence[Reason]) -> Verdict:
+    """Falls short before not rated before adequate; a nan is never dropped."""
+    counted = [s for s in states if s.counted]
+    if any(s.utilisation > 1.0 for s in counted):
+        return Verdict.FALLS_SHORT
+    if reasons or not counted or any(math.isnan(s.utilisation) for s in counted):
+        return Verdict.NOT_RATED
+    return Verdict.ADEQUATE
+
+
+def incomplete_reasons(states: Sequence[LimitStateRating]) -> tuple[Reason, ...]:
+    """Reasons from the limit states that could not be worked out, each text once."""
+    texts = dict.fromkeys(
+        s.why_not if s.why_not.startswith("outside") else f"{s.title}: {s.why_not}"
+        for s in states
+        if s.counted and math.isnan(s.utilisation)
+    )
+    return tuple(Reason(text, blocking=False) for text in texts)
+
+
+def safe_load(
+    case: str,
+    loads: Sequence[Load],
+    factors: Factors,
+    beam: int,
+    states: Sequence[LimitState],
+    places: Places,
+    complete: bool,
+) -> SafeLoad:
+    """What a rated case may grow to on one beam; ``complete`` is False where it is not rated."""
+    assigned = "; ".join(load.text for load in loads)
+    if not complete:
+        return SafeLoad(case, math.nan, assigned, math.nan, "", _UNKNOWN_CASE, "", math.nan, "")
+    factor, row = float(factors.factor[beam]), int(factors.state[beam])
+    element = int(factors.element[beam])
+    kind, value = _single(loads)
+    return SafeLoad(
+        case=case,
+        factor=factor,
+        assigned=assigned,
+        single_value=factor * value if math.isfinite(factor) else math.nan,
+        single_kind=kind,
+        text=_safe_load_text(factor, kind, value, loads),
+        governing=states[row].title if row >= 0 else "",
+        position=places.position(element) if row >= 0 else math.nan,
+        combination=places.combination(element) if row >= 0 else "",
+    )
+
+
+def _single(loads: Sequence[Load]) -> tuple[str, float]:
+    """Kind and value of a case that is one point or one even line on this beam."""
+    if len(loads) != 1 or loads[0].kind == "moment" or loads[0].values[0] == 0.0:
+        return "", math.nan
+    load = loads[0]
+    if load.kind == "line" and load.values[0] != load.values[1]:
+        return "", math.nan
+    return load.kind, load.values[0]
+
+
+def _safe_load_text(factor: float, kind: str, value: float, loads: Sequence[Load]) -> str:
+    if math.isinf(factor):
+        return "not limited"
+    if factor == 0.0:
+        return "none: the other loads alone exceed the resistance"
+    if kind == "point":
+        place = show(loads[0].start, "length")
+        return f"{show(factor * value, 'force', rounding='down')} at {place}"
+    if kind == "line":
+        return show(factor * value, "line_load", rounding="down")
+    return f"{show_ratio(factor)} x assigned"
