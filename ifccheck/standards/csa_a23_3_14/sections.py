@@ -6,6 +6,7 @@ from dataclasses import dataclass, fields, is_dataclass, replace
 from typing import Any, TypeVar
 
 from ifccheck.mechanics.arrays import Bools, Floats, Ints
+from ifccheck.standards.csa_a23_3_14.critical import Surroundings
 
 T = TypeVar("T")
 
@@ -108,6 +109,8 @@ class Prepared:
     """f'c lies outside 20 to 80 MPa (8.6.1.1)"""
     beyond_yield: Bools
     """A longitudinal bar's fy exceeds 500 MPa (8.5.1)"""
+    surroundings: Surroundings
+    """Faces and critical sections as seen from each station: critical.surroundings(...)"""
 
     def take(self, rows: Ints) -> Prepared:
         """The same at the given stations; rows may repeat."""

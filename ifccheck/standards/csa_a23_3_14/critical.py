@@ -1,0 +1,161 @@
+"""What a shear check must know of a station's surroundings: the faces of the supports."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+
+from ifccheck.mechanics.arrays import Bools, Floats, Ints
+
+REACH = 1e-6
+"""Places nearer to one another than this are one [mm]."""
+
+
+@dataclass(frozen=True, slots=True)
+class Surroundings:
+    """The critical section and the faces as seen from each station; one row per station (N)."""
+
+    simplified: Bools
+    """Shear by 11.3.6.3, else by 11.3.6.4"""
+    critical_distance: Floats
+    """Distance to the critical section at dv from the nearer face [mm]; 0 beyond it"""
+    critical_area_sagging: Floats
+    """Developed tension steel of the soffit at that section [mm2]; the station's own beyond"""
+    critical_area_hogging: Floats
+    """The same of the top [mm2]"""
+    start_distance: Floats
+    """Distance from the face at the beam's start [mm]"""
+    end_distance: Floats
+    """Distance from the face at the beam's end [mm]"""
+    peak_depth_sagging: Floats
+    """Least dv of the beam with the soffit in tension, where that face has steel [mm]"""
+    peak_depth_hogging: Floats
+    """The same for the top [mm]"""
+
+
+def critical_shear_depth(
+    *,
+    sagging_depth: Floats,
+    hogging_depth: Floats,
+    sagging_area: Floats,
+    hogging_area: Floats,
+) -> Floats:
+    """Distance of the critical section for shear from the face of a support.
+
+    The lesser dv of the faces that have steel; of both where neither has any. The lesser
+    distance is the safe one: the shear there is the greater.
+
+    Parameters
+    ----------
+    sagging_depth, hogging_depth
+        dv with the soffit and with the top in tension [mm] (N).
+    sagging_area, hogging_area
+        Steel of the soffit and of the top, as if fully developed [mm2] (N).
+
+    References
+    ----------
+    CSA A23.3-14, 11.3.2
+    """
+    least = np.minimum(sagging_depth, hogging_depth)
+    only_soffit = (sagging_area > 0.0) & ~(hogging_area > 0.0)
+    only_top = (hogging_area > 0.0) & ~(sagging_area > 0.0)
+    return np.where(only_soffit, sagging_depth, np.where(only_top, hogging_depth, least))
+
+
+def surroundings(
+    *,
+    simplified: bool,
+    beam: Ints,
+    x: Floats,
+    inside: Bools,
+    sagging_depth: Floats,
+    hogging_depth: Floats,
+    sagging_area: Floats,
+    hogging_area: Floats,
+    sagging_area_full: Floats,
+    hogging_area_full: Floats,
+) -> Surroundings:
+    """Find the faces and critical sections that belong to every station.
+
+    Parameters
+    ----------
+    simplified
+        Whether the brief chooses the simplified method for shear.
+    beam, x, inside
+        Stations, sorted by beam and x: row of the beam, place [mm] and whether it lies between
+        the faces of the supports (N).
+    sagging_depth, hogging_depth
+        dv with the soffit and with the top in tension [mm] (N).
+    sagging_area, hogging_area
+        Tension steel of each face, reduced where it is not developed [mm2] (N).
+    sagging_area_full, hogging_area_full
+        The same as if fully developed [mm2] (N).
+
+    Notes
+    -----
+    The first and the last station between the faces stand at the faces.
+    """
+    first = np.flatnonzero(np.diff(beam, prepend=-1))
+    counts = np.diff(first, append=beam.size)
+
+    def of_beam(reduce: np.ufunc, values: Floats) -> Floats:
+        return np.repeat(reduce.reduceat(values, first), counts)
+
+    start = of_beam(np.minimum, np.where(inside, x, np.inf))
+    end = of_beam(np.maximum, np.where(inside, x, -np.inf))
+    distance = critical_shear_depth(
+        sagging_depth=sagging_depth,
+        hogging_depth=hogging_depth,
+        sagging_area=sagging_area_full,
+        hogging_area=hogging_area_full,
+    )
+    rows, reach = _critical_rows(x, start, end, distance, first, counts)
+    return Surroundings(
+        simplified=np.full(x.shape, simplified),
+        critical_distance=reach,
+        critical_area_sagging=sagging_area[rows],
+        critical_area_hogging=hogging_area[rows],
+        start_distance=x - start,
+        end_distance=end - x,
+        peak_depth_sagging=of_beam(
+            np.minimum, np.where(sagging_area_full > 0.0, sagging_depth, np.inf)
+        ),
+        peak_depth_hogging=of_beam(
+            np.minimum, np.where(hogging_area_full > 0.0, hogging_depth, np.inf)
+        ),
+    )
+
+
+def _critical_rows(
+    x: Floats, start: Floats, end: Floats, distance: Floats, first: Ints, counts: Ints
+) -> tuple[Ints, Floats]:
+    """Row of the critical section of each station (itself beyond it), and how far it is."""
+    rows = np.arange(x.size)
+    middle = 0.5 * (start + end)
+    near_start = x <= middle
+    face = np.where(near_start, start, end)
+    face_row = np.where(
+        near_start, _rows_at(x, start, first, counts), _rows_at(x, end, first, counts)
+    )
+    from_face = distance[face_row]
+    place = np.where(near_start, face + from_face, face - from_face)
+    nearer = np.where(near_start, x < place - REACH, x > place + REACH) & np.isfinite(face)
+    found = _rows_at(x, place, first, counts)
+    at_section = nearer & (np.abs(x[found] - place) <= REACH)
+    return np.where(at_section, found, rows), np.where(at_section, np.abs(place - x), 0.0)
+
+
+def _rows_at(x: Floats, place: Floats, first: Ints, counts: Ints) -> Ints:
+    """Row of the station of the same beam that lies nearest to a place of that beam."""
+    beam = np.repeat(np.arange(first.size), counts)
+    span = float(np.ptp(x)) + 1.0
+    low = float(x.min(initial=0.0))
+    wanted = np.clip(np.nan_to_num(place, posinf=low, neginf=low) - low, 0.0, span)
+    key = 2.0 * span * beam + (x - low)
+    target = 2.0 * span * beam + wanted
+    last = first[beam] + counts[beam] - 1
+    right = np.clip(np.searchsorted(key, target), first[beam], last)
+    left = np.clip(right - 1, first[beam], last)
+    nearest: Ints = np.where(np.abs(x[left] - place) < np.abs(x[right] - place), left, right)
+    return nearest
