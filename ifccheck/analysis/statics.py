@@ -1,0 +1,285 @@
+"""Exact moment, shear and deflection of single spans, for every case at every station.
+
+Four constants per span (reaction, moment, slope and deflection at its start) follow from what
+all its loads do about its end and from how its two ends are held; the rest is the sum of the
+loads left of a section.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, replace
+
+import numpy as np
+
+from ifccheck.analysis.brackets import Brackets, Sections, sum_brackets
+from ifccheck.analysis.loads import LINE, MOMENT, POINT, LoadTable, join_loads
+from ifccheck.analysis.spans import FIXED, FREE, PINNED, SpanTable, require_standing
+from ifccheck.analysis.stations import SAME_PLACE, StationTable
+from ifccheck.mechanics.arrays import Bools, Floats, Ints
+
+NEGLIGIBLE = 1e-6
+"""Share of a case's greatest effect on a beam below which its effect is zero."""
+
+_ROUNDING = 1e-12
+"""Share of a case's whole load on a beam that rounding may leave behind."""
+
+
+@dataclass(frozen=True, slots=True)
+class CaseEffects:
+    """What each case (K), unfactored, does at each station (N) and to each beam (B)."""
+
+    beam: Ints
+    """Row of the beam of each station (N)"""
+    x: Floats
+    """Place of each station [mm] (N)"""
+    moment: Floats
+    """[N*mm], sagging positive (K, N)"""
+    shear: Floats
+    """[N], positive where the left part pushes up (K, N)"""
+    deflection: Floats
+    """Deflection times EI, downward positive, for one EI along the span [N*mm3] (K, N)"""
+    reactions: Floats
+    """Upward force of the start and the end support on the beam [N] (K, B, 2)"""
+    end_moments: Floats
+    """Moment just inside the start and the end of the span [N*mm] (K, B, 2)"""
+
+
+@dataclass(frozen=True, slots=True)
+class _Start:
+    """Reaction, moment, slope and deflection (times EI, downward) at the start of a span,
+    before what acts there (K, B)."""
+
+    reaction: Floats
+    moment: Floats
+    slope: Floats
+    deflection: Floats
+
+
+def case_effects(
+    spans: SpanTable, loads: LoadTable, stations: StationTable, cases: int
+) -> CaseEffects:
+    """Moment, shear and deflection of every case at every station.
+
+    M(s) = M0 + R0 s - sum of the moments of the loads left of s; V(s) = R0 - sum of their
+    forces; EI v'' = -M with v downward.
+
+    Parameters
+    ----------
+    spans
+        One span per beam (B).
+    loads
+        Loads on those beams, sorted by beam. What lies beyond a supported end acts at that
+        end, so that its force goes straight into the support; what lies beyond a free end acts
+        where it is.
+    stations
+        Places within the spans, sorted by beam (N). Side -1 is just left of a point load or a
+        moment, +1 just right, 0 as -1; at the ends of a span all are just inside.
+    cases
+        Number of cases (K).
+
+    Returns
+    -------
+    CaseEffects
+        Moments and shears below 1e-6 of the greatest of the same case on the same beam are 0.
+
+    Raises
+    ------
+    ValueError
+        Where a span has no length or is not held by its supports.
+
+    Notes
+    -----
+    A moment load lowers the moment by its value from left to right: positive is anticlockwise
+    with x to the right and z up. EI is constant along a span; moment and shear of spans that
+    are statically determinate do not depend on that.
+
+    References
+    ----------
+    First principles: equilibrium, and the elastic line by brackets.
+    """
+    require_standing(spans)
+    local = _within_spans(spans, loads)
+    totals = sum_brackets(local, _span_ends(spans), cases)
+    start = _start_constants(spans, totals)
+    left = sum_brackets(local, _sections(spans, stations), cases)
+    moment, shear, deflection = _along(spans, stations, start, left)
+    first = stations.first_rows(len(spans.start))
+    force_scale, moment_scale = _load_scales(spans, local, cases)
+    return CaseEffects(
+        beam=stations.beam,
+        x=stations.x,
+        moment=_without_noise(moment, stations, first, moment_scale),
+        shear=_without_noise(shear, stations, first, force_scale),
+        deflection=deflection,
+        reactions=np.stack([start.reaction, totals.force - start.reaction], axis=-1),
+        end_moments=_end_moments(spans, local, start, totals),
+    )
+
+
+def _within_spans(spans: SpanTable, loads: LoadTable) -> LoadTable:
+    """Loads with x from the start of their span, those beyond a supported end moved to it."""
+    origin, length = spans.start[loads.beam], spans.length[loads.beam]
+    low = np.where(spans.start_kind[loads.beam] == FREE, -np.inf, 0.0)
+    high = np.where(spans.end_kind[loads.beam] == FREE, np.inf, length)
+    whole = replace(loads, start=loads.start - origin, end=loads.end - origin)
+    start, end = np.clip(whole.start, low, high), np.clip(whole.end, low, high)
+    moved = replace(
+        whole,
+        start=start,
+        end=end,
+        value_start=np.where(loads.kind == LINE, _intensity(whole, start), loads.value_start),
+        value_end=np.where(loads.kind == LINE, _intensity(whole, end), loads.value_end),
+    )
+    before = np.flatnonzero((loads.kind == LINE) & (whole.start < low))
+    after = np.flatnonzero((loads.kind == LINE) & (whole.end > high))
+    if not (before.size or after.size):
+        return moved
+    off_start = _as_points(whole.take(before), low[before], -np.inf, low[before])
+    off_end = _as_points(whole.take(after), high[after], high[after], np.inf)
+    return join_loads(moved, off_start, off_end)
+
+
+def _intensity(line: LoadTable, x: Floats) -> Floats:
+    """Intensity of a trapezoidal line at x [N/mm]."""
+    length = line.end - line.start
+    part = np.divide(x - line.start, length, out=np.zeros_like(x), where=length > 0.0)
+    return line.value_start + (line.value_end - line.value_start) * part
+
+
+def _as_points(line: LoadTable, at: Floats, low: Floats | float, high: Floats | float) -> LoadTable:
+    """The force of what a line has between low and high, as a point load."""
+    start, end = np.maximum(line.start, low), np.minimum(line.end, high)
+    force = (_intensity(line, start) + _intensity(line, end)) / 2.0 * (end - start)
+    kind = np.full_like(line.kind, POINT)
+    return replace(line, kind=kind, start=at, end=at, value_start=force, value_end=force)
+
+
+def _span_ends(spans: SpanTable) -> Sections:
+    """The end of each span, about which all its loads are summed."""
+    count = len(spans.start)
+    return Sections(np.arange(count + 1), spans.length, np.ones(count, np.bool_), whole=True)
+
+
+def _sections(spans: SpanTable, stations: StationTable) -> Sections:
+    """Stations with x from the start of the span; the ends of the span seen from inside."""
+    x = stations.x - spans.start[stations.beam]
+    at_start = x <= SAME_PLACE
+    at_end = x >= spans.length[stations.beam] - SAME_PLACE
+    right = ((stations.side > 0) | at_start) & ~at_end
+    return Sections(stations.first_rows(len(spans.start)), x, right)
+
+
+def _start_constants(spans: SpanTable, totals: Brackets) -> _Start:
+    """Constants at the start of each span from the conditions at its two ends (K, B)."""
+    length = spans.length
+    force, moment, slope, deflection = totals.force, totals.moment, totals.slope, totals.deflection
+    simple = moment / length
+    fixed_far = 3.0 * (slope * length - deflection) / length**3
+    fixed_near = 3.0 * (moment * length**2 / 2.0 - deflection) / length**3
+    fixed_both = 6.0 * (slope * length - 2.0 * deflection) / length**3
+    reaction = _by_pair(spans, simple, fixed_far, fixed_near, fixed_both, force, 0.0 * force)
+    none = np.zeros_like(force)
+    start_moment = _by_pair(
+        spans,
+        none,
+        none,
+        moment - fixed_near * length,
+        slope / length - fixed_both * length / 2.0,
+        moment - force * length,
+        none,
+    )
+    start_slope = _by_pair(
+        spans,
+        simple * length**2 / 6.0 - deflection / length,
+        fixed_far * length**2 / 2.0 - slope,
+        none,
+        none,
+        none,
+        -slope,
+    )
+    free_near = spans.start_kind == FREE
+    start_deflection = np.where(free_near, slope * length - deflection, 0.0)
+    return _Start(reaction, start_moment, start_slope, start_deflection)
+
+
+def _by_pair(
+    spans: SpanTable,
+    pinned_pinned: Floats,
+    pinned_fixed: Floats,
+    fixed_pinned: Floats,
+    fixed_fixed: Floats,
+    fixed_free: Floats,
+    free_fixed: Floats,
+) -> Floats:
+    """The value of each span's own pair of supports (K, B)."""
+    start, end = spans.start_kind, spans.end_kind
+    return np.select(
+        [
+            (start == PINNED) & (end == PINNED),
+            (start == PINNED) & (end == FIXED),
+            (start == FIXED) & (end == PINNED),
+            (start == FIXED) & (end == FIXED),
+            (start == FIXED) & (end == FREE),
+            (start == FREE) & (end == FIXED),
+        ],
+        [pinned_pinned, pinned_fixed, fixed_pinned, fixed_fixed, fixed_free, free_fixed],
+        default=np.nan,
+    )
+
+
+def _along(
+    spans: SpanTable, stations: StationTable, start: _Start, left: Brackets
+) -> tuple[Floats, Floats, Floats]:
+    """Moment, shear and deflection at every station (K, N)."""
+    beam = stations.beam
+    s = stations.x - spans.start[beam]
+    reaction, fixing = start.reaction[:, beam], start.moment[:, beam]
+    moment = fixing + reaction * s - left.moment
+    shear = reaction - left.force
+    bent = start.slope[:, beam] - (fixing / 2.0 + reaction * s / 6.0) * s
+    deflection = start.deflection[:, beam] + bent * s + left.deflection
+    return moment, shear, deflection
+
+
+def _load_scales(spans: SpanTable, loads: LoadTable, cases: int) -> tuple[Floats, Floats]:
+    """Sum of the sizes of each case's loads on each beam, as a force and as a moment (K, B)."""
+    length = spans.length[loads.beam]
+    line = (np.abs(loads.value_start) + np.abs(loads.value_end)) * (loads.end - loads.start)
+    size = np.abs(loads.value_start)
+    force = np.select([loads.kind == LINE, loads.kind == MOMENT], [line, size / length], size)
+    cell = loads.case * len(spans.start) + loads.beam
+    count = cases * len(spans.start)
+    summed = np.bincount(cell, weights=force, minlength=count).astype(np.float64, copy=False)
+    total = summed.reshape(cases, len(spans.start))
+    return total, total * spans.length
+
+
+def _without_noise(
+    effect: Floats, stations: StationTable, first: Ints, load_scale: Floats
+) -> Floats:
+    """The effect (K, N) with zero where it is negligible beside the greatest on its beam."""
+    if not effect.size:
+        return effect
+    held = np.flatnonzero(np.diff(first))
+    size = np.abs(effect)
+    limit = load_scale * _ROUNDING
+    peak = np.maximum.reduceat(size, first[held], axis=1)
+    limit[:, held] = np.maximum(limit[:, held], peak * NEGLIGIBLE)
+    return np.where(size > limit[:, stations.beam], effect, 0.0)
+
+
+def _end_moments(spans: SpanTable, loads: LoadTable, start: _Start, totals: Brackets) -> Floats:
+    """Moment just inside both ends of each span: without the moment loads at the end (K, B, 2)."""
+    at_start = _moments_at(spans, loads, np.abs(loads.start) <= SAME_PLACE, totals)
+    near_end = np.abs(loads.start - spans.length[loads.beam]) <= SAME_PLACE
+    at_end = _moments_at(spans, loads, near_end, totals)
+    far = start.moment + start.reaction * spans.length - totals.moment
+    return np.stack([start.moment - at_start, far + at_end], axis=-1)
+
+
+def _moments_at(spans: SpanTable, loads: LoadTable, there: Bools, totals: Brackets) -> Floats:
+    """Sum of the moment loads of the given rows, by case and beam (K, B)."""
+    rows = np.flatnonzero(there & (loads.kind == MOMENT))
+    cell = loads.case[rows] * len(spans.start) + loads.beam[rows]
+    sums = np.bincount(cell, loads.value_start[rows], minlength=totals.force.size)
+    return sums.astype(np.float64, copy=False).reshape(totals.force.shape)
