@@ -367,7 +367,7 @@ class Load:
     line: intensity [N/mm] from ``values[0]`` at ``start`` to ``values[1]`` at ``end``;
     point: force [N] ``values[0]`` at ``start``; moment: ``values[0]`` [N*mm] at ``start``,
     positive where it turns the left part into sagging just left of it (anticlockwise seen
-    with x to the right and z up is negative).
+    with x to the right and z up): the moment falls by the value from left to right.
     """
 
     beam: str
