@@ -226,7 +226,8 @@ def _first_guess(sections: _Sections, deepest: Floats, capacity: Floats) -> Floa
     area, _ = compression_block(sections.strips, height)
     breadth = np.divide(area, height, out=np.ones_like(area), where=area > 0.0)
     c = capacity / np.maximum(sections.block_stress * sections.block_factor * breadth, 1e-300)
-    return np.minimum(np.maximum(c, 0.01 * deepest), 0.9 * deepest)
+    guess: Floats = np.minimum(np.maximum(c, 0.01 * deepest), 0.9 * deepest)
+    return guess
 
 
 def _strength(sections: _Sections, c: Floats) -> FlexuralStrength:
@@ -278,7 +279,8 @@ def tension_side(layer_depth: Floats, layer_area: Floats, depth: Floats) -> Bool
     depth : array (n) [mm]
         Overall depth of the section.
     """
-    return (layer_area > 0.0) & (layer_depth >= depth[:, None] / 2)
+    side: Bools = ~(layer_area <= 0.0) & (layer_depth >= depth[:, None] / 2)
+    return side
 
 
 def centroid_depth(layer_depth: Floats, layer_area: Floats) -> Floats:

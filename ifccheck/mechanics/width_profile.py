@@ -12,7 +12,7 @@ from collections.abc import Sequence
 import numpy as np
 
 from ifccheck.beam import Ring
-from ifccheck.mechanics.arrays import Floats
+from ifccheck.mechanics.arrays import Bools, Floats
 
 SLIVER = 1e-6
 """Lengths below this [mm] are rounding, not shape."""
@@ -203,6 +203,13 @@ def flipped(strips: Floats) -> Floats:
     return np.stack([turn - z1, turn - z0, w1, w0], axis=-1)
 
 
+def from_soffit(strips: Floats) -> Floats:
+    """The same sections (n, S, 4) with heights measured from their own soffit."""
+    foot = bottom_of(strips)[:, None]
+    z0, z1, w0, w1 = np.moveaxis(strips, -1, 0)
+    return np.stack([z0 - foot, z1 - foot, w0, w1], axis=-1)
+
+
 def _below(strips: Floats, z: Floats) -> tuple[Floats, Floats, Floats, Floats]:
     """Foot, height below z, width at the foot and slope of width of each strip (n, S)."""
     z0, z1, w0, w1 = np.moveaxis(strips, -1, 0)
@@ -314,6 +321,24 @@ def width_at(strips: Floats, z: Floats) -> Floats:
     return width
 
 
+def greatest_width(strips: Floats, z_low: Floats, z_high: Floats) -> Floats:
+    """Greatest width between two heights.
+
+    Parameters
+    ----------
+    strips : array (n, S, 4) [mm]
+    z_low, z_high : arrays (n) [mm]
+
+    Returns
+    -------
+    array (n) [mm]
+        0 where no strip lies between the heights.
+    """
+    ends, reached = _end_widths(strips, z_low, z_high)
+    greatest: Floats = np.where(reached, ends.max(axis=0), 0.0).max(axis=-1)
+    return greatest
+
+
 def least_width(strips: Floats, z_low: Floats, z_high: Floats) -> Floats:
     """Least width between two heights.
 
@@ -327,12 +352,18 @@ def least_width(strips: Floats, z_low: Floats, z_high: Floats) -> Floats:
     array (n) [mm]
         0 where no strip lies between the heights; nan where a height is nan.
     """
+    ends, reached = _end_widths(strips, z_low, z_high)
+    least = np.where(reached, ends.min(axis=0), np.inf).min(axis=-1)
+    least = np.where(np.isinf(least), 0.0, least)
+    return np.where(np.isnan(z_low) | np.isnan(z_high), np.nan, least)
+
+
+def _end_widths(strips: Floats, z_low: Floats, z_high: Floats) -> tuple[Floats, Bools]:
+    """Widths at both ends (2, n, S) of each strip's part between two heights, and whether
+    there is such a part (n, S)."""
     z0, z1, w0, w1 = np.moveaxis(strips, -1, 0)
     height = z1 - z0
     slope = np.divide(w1 - w0, height, out=np.zeros_like(height), where=height > 0)
     low = np.maximum(z0, np.asarray(z_low)[..., None])
     high = np.minimum(z1, np.asarray(z_high)[..., None])
-    ends = np.minimum(w0 + slope * (low - z0), w0 + slope * (high - z0))
-    least = np.where(high - low > SLIVER, ends, np.inf).min(axis=-1)
-    least = np.where(np.isinf(least), 0.0, least)
-    return np.where(np.isnan(z_low) | np.isnan(z_high), np.nan, least)
+    return np.stack([w0 + slope * (low - z0), w0 + slope * (high - z0)]), high - low > SLIVER

@@ -2,75 +2,32 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass, fields, is_dataclass, replace
-from typing import Any, TypeVar
+from collections.abc import Iterator, Sequence
+from dataclasses import dataclass, fields
 
-from ifccheck.mechanics.arrays import Bools, Floats, Ints
-from ifccheck.standards.csa_a23_3_14.critical import Surroundings
+import numpy as np
 
-T = TypeVar("T")
-
-
-def _take(state: T, rows: Ints) -> T:
-    """The same state at the given rows of the first axis, nested states included."""
-    taken: dict[str, Any] = {}
-    for item in fields(state):  # type: ignore[arg-type]
-        value = getattr(state, item.name)
-        taken[item.name] = _take(value, rows) if is_dataclass(value) else value[rows]
-    return replace(state, **taken)  # type: ignore[type-var]
-
-
-@dataclass(frozen=True, slots=True)
-class FaceState:
-    """A section with one face in tension; one row per station (N).
-
-    Flexural tension steel is what lies within half the depth of the tension face, each bar
-    reduced pro rata where it is not fully developed. Depths are measured from the
-    compression face.
-    """
-
-    moment_resistance: Floats
-    """Mr [N*mm]; 0 without flexural tension steel, nan outside the standard's range"""
-    effective_depth: Floats
-    """d to the centroid of the flexural tension steel [mm]; nan where there is none"""
-    shear_depth: Floats
-    """dv, the greater of 0.9 d and 0.72 h [mm]; 0.72 h where there is no tension steel"""
-    web_width: Floats
-    """bw, the least width between the compression face and the depth d [mm]"""
-    tension_area: Floats
-    """As, flexural tension steel, developed [mm2]"""
-    tension_area_full: Floats
-    """The same as if fully developed [mm2]"""
-    tension_force: Floats
-    """phi_s fy As of the flexural tension steel, developed [N]"""
-    tension_yield: Floats
-    """Greatest fy of the flexural tension steel [MPa]; 0 where there is none"""
-    neutral_axis_depth: Floats
-    """c [mm]"""
-    block_depth: Floats
-    """a = beta1 c, at most h [mm]"""
-    lever_arm: Floats
-    """Distance between the resultants of tension and compression [mm]"""
-    compression_area: Floats
-    """Concrete area under the stress block, effective flange width counted [mm2]"""
-    compression_depth: Floats
-    """Depth of the centroid of that area [mm]"""
-    concrete_force: Floats
-    """alpha1 phi_c f'c times that area [N]"""
-    compression_steel_force: Floats
-    """Force in compression steel less the concrete that it displaces [N]"""
-    compression_steel_depth: Floats
-    """Depth of that force [mm]; 0 where there is none"""
-    tension_resultant: Floats
-    """Force of all steel in tension at the resistance Mr [N]"""
-    tension_resultant_depth: Floats
-    """Depth of that force [mm]; 0 where there is none"""
-    minimum_area: Floats
-    """Minimum flexural reinforcement of 10.5.1.2 [mm2]"""
-    cracking_moment: Floats
-    """Mcr of the gross section [N*mm]"""
-    beyond_ductility: Bools
-    """c/d exceeds 700/(700 + fy) (10.5.2): Mr is nan"""
+from ifccheck.mechanics.arrays import (
+    ANCHOR_FULL,
+    ANCHOR_HOOK,
+    Bools,
+    Floats,
+    Ints,
+    Members,
+    Stations,
+)
+from ifccheck.mechanics.width_profile import bottom_of, top_of
+from ifccheck.standards.contract import Options
+from ifccheck.standards.csa_a23_3_14 import development, materials
+from ifccheck.standards.csa_a23_3_14.critical import Surroundings, surroundings
+from ifccheck.standards.csa_a23_3_14.faces import (
+    FaceState,
+    Layers,
+    SectionState,
+    hogging_face,
+    sagging_face,
+    take_rows,
+)
 
 
 @dataclass(frozen=True, slots=True)
@@ -114,4 +71,193 @@ class Prepared:
 
     def take(self, rows: Ints) -> Prepared:
         """The same at the given stations; rows may repeat."""
-        return _take(self, rows)
+        return take_rows(self, rows)
+
+
+def prepare(members: Members, stations: Stations, options: Options) -> Prepared:
+    """Sections of clauses 8, 10, 11 and 12 at each station.
+
+    Parameters
+    ----------
+    members, stations
+        The beams and the places along them.
+    options
+        Choices within the standard: the method for shear.
+
+    Returns
+    -------
+    Prepared
+
+    Notes
+    -----
+    Equilibrium is solved once for neighbouring stations of a beam that have the same section
+    and equally developed bars. Stations are worked off by the number of layers and strips that
+    they really have, so that one intricate section does not slow the others.
+    """
+    strength = members.concrete_strength[stations.beam]
+    bars = _layers(members)
+    rows, sagging, hogging, steel_yield = _faces(members, bars, stations)
+    back = np.argsort(rows)
+    sagging, hogging, steel_yield = sagging.take(back), hogging.take(back), steel_yield[back]
+    strips = members.strips
+    return Prepared(
+        beam=stations.beam,
+        x=stations.x,
+        inside=stations.inside,
+        concrete_strength=strength,
+        density_factor=members.density_factor[stations.beam],
+        aggregate_size=members.aggregate_size[stations.beam],
+        alpha1=materials.block_stress_ratio(strength),
+        beta1=materials.block_depth_ratio(strength),
+        depth=(top_of(strips) - bottom_of(strips))[stations.section],
+        longitudinal_yield=steel_yield,
+        stirrup_area=stations.stirrup_area,
+        stirrup_spacing=stations.stirrup_spacing,
+        stirrup_yield=stations.stirrup_yield,
+        sagging=sagging,
+        hogging=hogging,
+        beyond_concrete_strength=materials.beyond_concrete_strength(strength),
+        beyond_yield=materials.beyond_yield(steel_yield),
+        surroundings=_surroundings(stations, sagging, hogging, options),
+    )
+
+
+def _surroundings(
+    stations: Stations, sagging: FaceState, hogging: FaceState, options: Options
+) -> Surroundings:
+    """Faces of the supports and critical sections as seen from each station."""
+    return surroundings(
+        simplified=options.shear_method == "simplified",
+        beam=stations.beam,
+        x=stations.x,
+        inside=stations.inside,
+        sagging_depth=sagging.shear_depth,
+        hogging_depth=hogging.shear_depth,
+        sagging_area=sagging.tension_area,
+        hogging_area=hogging.tension_area,
+        sagging_area_full=sagging.tension_area_full,
+        hogging_area_full=hogging.tension_area_full,
+    )
+
+
+def _layers(members: Members) -> Layers:
+    """Layers with their development lengths from either end."""
+    m = members
+    strength = m.concrete_strength[:, None]
+    density = m.density_factor[:, None]
+    straight = development.development_length(
+        diameter=m.layer_diameter,
+        steel_yield=m.layer_yield,
+        concrete_strength=strength,
+        cover_distance=m.layer_cover_distance,
+        top_bar=m.layer_height > development.DEPTH_BELOW_TOP_BARS,
+        density_factor=density,
+    )
+    hooked = development.hook_development_length(
+        diameter=m.layer_diameter,
+        steel_yield=m.layer_yield,
+        concrete_strength=strength,
+        density_factor=density,
+    )
+    pushed = development.compression_development_length(
+        diameter=m.layer_diameter, steel_yield=m.layer_yield, concrete_strength=strength
+    )
+    pulled_lengths, pushed_lengths = (
+        [
+            np.select([anchor == ANCHOR_FULL, anchor == ANCHOR_HOOK], [0.0, hook], straight)
+            for anchor in (m.layer_start_anchor, m.layer_end_anchor)
+        ]
+        for hook in (hooked, np.maximum(hooked, pushed))
+    )
+    return Layers(
+        m.layer_height, m.layer_area, m.layer_diameter, m.layer_yield, m.layer_start, m.layer_end,
+        *pulled_lengths, *pushed_lengths,
+    )  # fmt: skip
+
+
+def _faces(
+    members: Members, bars: Layers, stations: Stations
+) -> tuple[Ints, FaceState, FaceState, Floats]:
+    """Both faces and the greatest fy at all stations, in the order of the rows returned."""
+    parts = [
+        (rows, *_group(members, bars, stations, rows, layers, strips))
+        for rows, layers, strips in _groups(members, stations)
+    ]
+    rows, sagging, hogging, steel_yield = zip(*parts, strict=True)
+    return np.concatenate(rows), _join(sagging), _join(hogging), np.concatenate(steel_yield)
+
+
+def _join(states: Sequence[FaceState]) -> FaceState:
+    """States one after another."""
+    return FaceState(
+        *(np.concatenate([getattr(s, f.name) for s in states]) for f in fields(FaceState))
+    )
+
+
+def _groups(members: Members, stations: Stations) -> Iterator[tuple[Ints, int, int]]:
+    """Rows of stations with about as many layers and strips, and those numbers."""
+    layers = _room(members.layer_area > 0.0)[stations.beam]
+    strips = _room(members.strips[..., 1] > members.strips[..., 0])[stations.section]
+    kinds, kind = np.unique(np.stack([layers, strips]), axis=1, return_inverse=True)
+    for index, (layer_count, strip_count) in enumerate(kinds.T.tolist()):
+        yield np.flatnonzero(kind.ravel() == index), layer_count, strip_count
+
+
+def _room(used: Bools) -> Ints:
+    """How many leading columns of each row are needed, as a power of two."""
+    width = used.shape[1]
+    last = np.where(used, np.arange(1, width + 1), 1).max(axis=1, initial=1)
+    room: Ints = np.minimum(2 ** np.ceil(np.log2(last)).astype(np.intp), max(width, 1))
+    return room
+
+
+def _group(
+    members: Members, bars: Layers, stations: Stations, rows: Ints, layers: int, strips: int
+) -> tuple[FaceState, FaceState, Floats]:
+    """Both faces and the greatest fy at stations of about the same make."""
+    beam, section = stations.beam[rows], stations.section[rows]
+    pulled, pushed = _developed(bars.take(beam, layers), stations.x[rows], stations.side[rows])
+    new = _differs(beam, section, pulled, pushed)
+    first, state = np.flatnonzero(new), np.cumsum(new) - 1
+    distinct = SectionState(
+        strength=members.concrete_strength[beam[first]],
+        density_factor=members.density_factor[beam[first]],
+        span=members.span[beam[first]],
+        strips=np.asfortranarray(members.strips[section[first], :strips]),
+        overhang_left=members.overhang_left[section[first]],
+        overhang_right=members.overhang_right[section[first]],
+        flange_thickness=members.flange_thickness[section[first]],
+        bars=bars.take(beam[first], layers),
+        pulled=np.asfortranarray(pulled[first]),
+        pushed=np.asfortranarray(pushed[first]),
+    )
+    steel_yield = np.where(distinct.present, distinct.bars.yield_strength, 0.0).max(axis=1)
+    sagging, hogging = sagging_face(distinct), hogging_face(distinct)
+    return sagging.take(state), hogging.take(state), steel_yield[state]
+
+
+def _developed(bars: Layers, x: Floats, side: Ints) -> tuple[Floats, Floats]:
+    """Part of fy that each layer reaches in tension and in compression."""
+    pulled, pushed = (
+        development.developed_fraction(
+            x=x[:, None],
+            side=side[:, None],
+            bar_start=bars.start,
+            bar_end=bars.end,
+            start_length=start_length,
+            end_length=end_length,
+        )
+        for start_length, end_length in (
+            (bars.start_length, bars.end_length),
+            (bars.start_length_compression, bars.end_length_compression),
+        )
+    )
+    return np.where(bars.area == 0.0, 0.0, pulled), np.where(bars.area == 0.0, 0.0, pushed)
+
+
+def _differs(beam: Ints, section: Ints, pulled: Floats, pushed: Floats) -> Bools:
+    """Whether a station's section or bars differ from those of the station before."""
+    new = np.ones(len(beam), dtype=np.bool_)
+    new[1:] = (beam[1:] != beam[:-1]) | (section[1:] != section[:-1])
+    new[1:] |= (pulled[1:] != pulled[:-1]).any(axis=1) | (pushed[1:] != pushed[:-1]).any(axis=1)
+    return new

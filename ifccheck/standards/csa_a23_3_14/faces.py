@@ -1,0 +1,298 @@
+"""One face of a section in tension: its strength and the depths that shear needs."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, fields, replace
+from typing import TYPE_CHECKING, Any, TypeVar
+
+import numpy as np
+
+from ifccheck.mechanics.arrays import Bools, Floats, Ints
+from ifccheck.mechanics.flexure import (
+    FlexuralStrength,
+    centroid_depth,
+    flexural_strength,
+    tension_side,
+)
+from ifccheck.mechanics.width_profile import (
+    area_below,
+    bottom_of,
+    first_moment_below,
+    flipped,
+    from_soffit,
+    greatest_width,
+    least_width,
+    second_moment_below,
+    top_of,
+)
+from ifccheck.standards.csa_a23_3_14 import flange, materials
+
+if TYPE_CHECKING:
+    from _typeshed import DataclassInstance
+
+State = TypeVar("State", bound="DataclassInstance")
+
+
+def take_rows(state: State, rows: Ints) -> State:
+    """The same state at the given rows of the first axis, nested states included."""
+    taken: dict[str, Any] = {}
+    for item in fields(state):
+        value = getattr(state, item.name)
+        nested = hasattr(value, "__dataclass_fields__")
+        taken[item.name] = take_rows(value, rows) if nested else value[rows]
+    return replace(state, **taken)
+
+
+@dataclass(frozen=True, slots=True)
+class FaceState:
+    """A section with one face in tension; one row per station (N).
+
+    Flexural tension steel is what lies within half the depth of the tension face, each bar
+    reduced pro rata where it is not fully developed. Depths are measured from the
+    compression face.
+    """
+
+    moment_resistance: Floats
+    """Mr [N*mm]; 0 without flexural tension steel, nan outside the standard's range"""
+    effective_depth: Floats
+    """d to the centroid of the flexural tension steel [mm]; nan where there is none"""
+    shear_depth: Floats
+    """dv, the greater of 0.9 d and 0.72 h [mm]; 0.72 h where there is no tension steel"""
+    web_width: Floats
+    """bw, the least width between the compression face and the depth d [mm]"""
+    tension_area: Floats
+    """As, flexural tension steel, developed [mm2]"""
+    tension_area_full: Floats
+    """The same as if fully developed [mm2]"""
+    tension_force: Floats
+    """phi_s fy As of the flexural tension steel, developed [N]"""
+    tension_yield: Floats
+    """Greatest fy of the flexural tension steel [MPa]; 0 where there is none"""
+    neutral_axis_depth: Floats
+    """c [mm]"""
+    block_depth: Floats
+    """a = beta1 c, at most h [mm]"""
+    lever_arm: Floats
+    """Distance between the resultants of tension and compression [mm]"""
+    compression_area: Floats
+    """Concrete area under the stress block, effective flange width counted [mm2]"""
+    compression_depth: Floats
+    """Depth of the centroid of that area [mm]"""
+    concrete_force: Floats
+    """alpha1 phi_c f'c times that area [N]"""
+    compression_steel_force: Floats
+    """Force in compression steel less the concrete that it displaces [N]"""
+    compression_steel_depth: Floats
+    """Depth of that force [mm]; 0 where there is none"""
+    tension_resultant: Floats
+    """Force of all steel in tension at the resistance Mr [N]"""
+    tension_resultant_depth: Floats
+    """Depth of that force [mm]; 0 where there is none"""
+    minimum_area: Floats
+    """Minimum flexural reinforcement of 10.5.1.2 [mm2]"""
+    cracking_moment: Floats
+    """Mcr of the gross section [N*mm]"""
+    beyond_ductility: Bools
+    """c/d exceeds 700/(700 + fy) (10.5.2): Mr is nan"""
+
+    def take(self, rows: Ints) -> FaceState:
+        """The same at the given stations; rows may repeat."""
+        return take_rows(self, rows)
+
+
+@dataclass(frozen=True, slots=True)
+class Layers:
+    """Layers and their development lengths; one row per beam (B, L)."""
+
+    height: Floats
+    area: Floats
+    diameter: Floats
+    yield_strength: Floats
+    start: Floats
+    end: Floats
+    start_length: Floats
+    end_length: Floats
+    start_length_compression: Floats
+    end_length_compression: Floats
+
+    def take(self, rows: Ints, count: int) -> Layers:
+        """The first layers of the given beams, laid out so that sums over layers are quick."""
+        return Layers(
+            *(np.asfortranarray(getattr(self, f.name)[rows, :count]) for f in fields(self))
+        )
+
+
+@dataclass(frozen=True, slots=True)
+class SectionState:
+    """Sections that differ from their neighbours; one row each."""
+
+    strength: Floats
+    density_factor: Floats
+    span: Floats
+    strips: Floats
+    overhang_left: Floats
+    overhang_right: Floats
+    flange_thickness: Floats
+    bars: Layers
+    pulled: Floats
+    pushed: Floats
+
+    @property
+    def depth(self) -> Floats:
+        """h [mm]"""
+        return top_of(self.strips) - bottom_of(self.strips)
+
+    @property
+    def present(self) -> Bools:
+        """Layers that reach the section"""
+        reach: Bools = ~(self.pulled <= 0.0)
+        return reach
+
+
+def sagging_face(section: SectionState) -> FaceState:
+    """The soffit in tension, the flange in compression."""
+    compressed = flange.effective_strips(
+        section.strips,
+        left=section.overhang_left,
+        right=section.overhang_right,
+        thickness=section.flange_thickness,
+        span=section.span,
+    )
+    layer_depth = top_of(section.strips)[:, None] - section.bars.height
+    return _face(section, from_soffit(flipped(compressed)), layer_depth, np.inf)
+
+
+def hogging_face(section: SectionState) -> FaceState:
+    """The top in tension, where only the flange's steel counts."""
+    one, both = section.overhang_left > 0.0, section.overhang_right > 0.0
+    tension_width_limit = np.select([one & both, one | both], [2.5, 1.5], np.inf)
+    layer_depth = section.bars.height - bottom_of(section.strips)[:, None]
+    return _face(section, from_soffit(section.strips), layer_depth, tension_width_limit)
+
+
+def _face(
+    section: SectionState, strips: Floats, layer_depth: Floats, tension_width_limit: Floats | float
+) -> FaceState:
+    """One face in tension; strips and depths from the compression face.
+
+    ``tension_width_limit`` is the greatest bt/bw that 10.5.1.2 asks for.
+    """
+    h, bars = section.depth, section.bars
+    side = tension_side(layer_depth, bars.area, h)
+    full = np.where(side & section.present, bars.area, 0.0)
+    developed = full * section.pulled
+    tension_yield = np.where(full > 0.0, bars.yield_strength, 0.0).max(axis=1)
+    d = centroid_depth(layer_depth, developed)
+    bw = least_width(strips, np.zeros_like(h), np.where(np.isnan(d), h, d))
+    s = _strength(section, strips, layer_depth, side)
+    tension_area = developed.sum(axis=1)
+    beyond_ductility = s.neutral_axis_depth > ductility_limit(tension_yield) * d
+    moment = np.where(tension_area == 0.0, 0.0, s.moment)
+    outside = beyond_ductility | materials.beyond_concrete_strength(section.strength)
+    outside |= (materials.beyond_yield(bars.yield_strength) & section.present).any(axis=1)
+    bt = np.minimum(greatest_width(strips, h / 2, h), tension_width_limit * bw)
+    return FaceState(
+        moment_resistance=np.where(outside, np.nan, moment),
+        effective_depth=d,
+        shear_depth=np.fmax(0.9 * d, 0.72 * h),
+        web_width=bw,
+        tension_area=tension_area,
+        tension_area_full=full.sum(axis=1),
+        tension_force=materials.STEEL_FACTOR * (developed * bars.yield_strength).sum(axis=1),
+        tension_yield=tension_yield,
+        neutral_axis_depth=s.neutral_axis_depth,
+        block_depth=np.minimum(s.block_depth, h),
+        lever_arm=s.lever_arm,
+        compression_area=s.block_area,
+        compression_depth=s.block_centroid,
+        concrete_force=s.concrete_force,
+        compression_steel_force=s.compression_steel_force,
+        compression_steel_depth=s.compression_steel_depth,
+        tension_resultant=s.tension_force,
+        tension_resultant_depth=s.tension_depth,
+        minimum_area=minimum_area(section.strength, tension_yield, bt, h),
+        cracking_moment=_cracking_moment(section, strips),
+        beyond_ductility=beyond_ductility,
+    )
+
+
+def _strength(
+    section: SectionState, strips: Floats, layer_depth: Floats, side: Bools
+) -> FlexuralStrength:
+    """Equilibrium with the factors of the standard and each bar's usable stress."""
+    usable = np.where(side, section.pulled, section.pushed) * section.bars.yield_strength
+    ratio = materials.block_stress_ratio(section.strength)
+    return flexural_strength(
+        strips=strips,
+        layer_depth=layer_depth,
+        layer_area=section.bars.area,
+        layer_yield=usable,
+        layer_diameter=section.bars.diameter,
+        block_stress=ratio * materials.CONCRETE_FACTOR * section.strength,
+        block_factor=materials.block_depth_ratio(section.strength),
+        crushing_strain=materials.CRUSHING_STRAIN,
+        steel_modulus=materials.STEEL_MODULUS,
+        steel_factor=materials.STEEL_FACTOR,
+    )
+
+
+def _cracking_moment(section: SectionState, strips: Floats) -> Floats:
+    """fr I / yt of the section without its steel."""
+    h = section.depth
+    area, first = area_below(strips, h), first_moment_below(strips, h)
+    centroid = first / area
+    inertia = second_moment_below(strips, h) - area * centroid**2
+    stress = materials.cracking_stress(
+        concrete_strength=section.strength, density_factor=section.density_factor
+    )
+    moment: Floats = stress * inertia / (h - centroid)
+    return moment
+
+
+def ductility_limit(steel_yield: Floats) -> Floats:
+    """Greatest c/d at which the tension steel may be taken to yield.
+
+    c/d <= 700 / (700 + fy)
+
+    Parameters
+    ----------
+    steel_yield : array [MPa]
+
+    References
+    ----------
+    CSA A23.3-14, 10.5.2
+    """
+    limit: Floats = 700.0 / (700.0 + steel_yield)
+    return limit
+
+
+def minimum_area(
+    concrete_strength: Floats, steel_yield: Floats, tension_width: Floats, depth: Floats
+) -> Floats:
+    """Minimum flexural reinforcement [mm2].
+
+    As,min = 0.2 sqrt(f'c) / fy * bt h
+
+    Parameters
+    ----------
+    concrete_strength, steel_yield : arrays [MPa]
+    tension_width, depth : arrays [mm]
+        bt and h
+
+    Returns
+    -------
+    array [mm2]
+        nan where there is no steel.
+
+    Examples
+    --------
+    >>> round(float(minimum_area(*map(np.array, (40.0, 400.0, 400.0, 600.0)))))
+    759
+
+    References
+    ----------
+    CSA A23.3-14, 10.5.1.2
+    """
+    fy = np.where(steel_yield > 0.0, steel_yield, np.nan)
+    area: Floats = 0.2 * np.sqrt(concrete_strength) / fy * tension_width * depth
+    return area
