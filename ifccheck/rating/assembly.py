@@ -188,7 +188,7 @@ def _row_at(beam: Ints, x: Floats, side: Ints, row_beam: Ints, row_start: Floats
     key = row_beam * reach + row_start
     place = np.searchsorted(key, beam * reach + x + 1e-6 * np.sign(side), side="right") - 1
     first = np.searchsorted(row_beam, beam)
-    return np.maximum(place, first)
+    return np.asarray(np.maximum(place, first), dtype=np.intp)
 
 
 def _stirrups_at(

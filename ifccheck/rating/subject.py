@@ -22,6 +22,11 @@ class Subject:
     stirrups_known: bool
     """False where no source says whether there are stirrups"""
     reinforcement_source: str
+    faces: tuple[float, float]
+    """x of the faces of the two supports [mm]"""
+    direct: tuple[bool, bool]
+    """Whether the reaction compresses the start and the end: a bearing from below or a column,
+    not the side of another beam"""
     loads: tuple[Load, ...]
     """Without self weight"""
     concrete_strength: Given

@@ -1,0 +1,302 @@
+"""Rates a batch of beams at once: stations, demand, checks, rating factors, on arrays."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator, Sequence
+from dataclasses import dataclass, fields
+from typing import Any
+
+import numpy as np
+
+from ifccheck.analysis.combinations import factor_array
+from ifccheck.analysis.effects import Demands, Effects, combine, demands, turning_places
+from ifccheck.analysis.loads import (
+    MOMENT,
+    POINT,
+    LoadTable,
+    join_loads,
+    load_table,
+    self_weight_lines,
+)
+from ifccheck.analysis.spans import FREE, SpanTable, span_table
+from ifccheck.analysis.statics import CaseEffects, case_effects
+from ifccheck.analysis.stations import (
+    Places,
+    StationTable,
+    critical_rows,
+    join_places,
+    make_stations,
+    places,
+)
+from ifccheck.beam import SELF, Case, Combination
+from ifccheck.mechanics.arrays import Bools, Demand, Floats, Ints, Members
+from ifccheck.rating import verdict
+from ifccheck.rating.assembly import (
+    RunTable,
+    StirrupTable,
+    make_station_arrays,
+    members_of,
+    run_table,
+    stirrup_table,
+)
+from ifccheck.rating.factors import Factors, rating_factors
+from ifccheck.rating.subject import Subject
+from ifccheck.rating.utilisation import worst_of
+from ifccheck.rating.verdict import Evaluated
+from ifccheck.standards import Note, Options, Standard
+
+
+@dataclass(frozen=True, slots=True)
+class Envelope:
+    """Demand and resistance at every station (N), for the diagrams."""
+
+    moment_high: Floats
+    moment_low: Floats
+    shear_high: Floats
+    shear_low: Floats
+    resistance: dict[str, Floats]
+    """By limit state: the resistance that goes with its greatest utilisation"""
+
+
+@dataclass(frozen=True, slots=True)
+class Batch:
+    """A batch of rated beams; beams are rows (B), stations are rows (N)."""
+
+    subjects: tuple[Subject, ...]
+    stations: StationTable
+    first: Ints
+    """First station of each beam, and the number of stations (B + 1)"""
+    prepared: Any
+    demand: Demand
+    states: tuple[Evaluated, ...]
+    factors: dict[str, Factors]
+    """By rated case"""
+    places: verdict.Places
+    envelope: Envelope
+    notes: tuple[Note, ...]
+    basis: dict[str, Floats]
+
+
+@dataclass(frozen=True, slots=True)
+class _Frame:
+    """The batch as tables, before stations."""
+
+    members: Members
+    runs: RunTable
+    zones: StirrupTable
+    spans: SpanTable
+    faces: Floats
+    """(B, 2)"""
+    loads: LoadTable
+
+
+def batches(
+    subjects: Sequence[Subject],
+    standard: Standard,
+    options: Options,
+    cases: Sequence[Case],
+    combinations: Sequence[Combination],
+    size: int = 200,
+) -> Iterator[Batch]:
+    """Rate the subjects, a batch at a time; arrays of that size stay in the processor's cache."""
+    for start in range(0, len(subjects), size):
+        yield rate_batch(subjects[start : start + size], standard, options, cases, combinations)
+
+
+def rate_batch(
+    subjects: Sequence[Subject],
+    standard: Standard,
+    options: Options,
+    cases: Sequence[Case],
+    combinations: Sequence[Combination],
+) -> Batch:
+    """Rate beams together.
+
+    Parameters
+    ----------
+    subjects
+        At least one beam (B).
+    cases
+        All load cases, ``self`` among them.
+    combinations
+        Strength combinations, exclusions already worked out.
+    """
+    frame = _frame(subjects, cases)
+    critical = _critical_sections(subjects, frame, standard, options)
+    effects, stations = _effects(frame, critical, cases, combinations)
+    arrays = make_station_arrays(
+        stations.beam, stations.x, stations.side, frame.runs, frame.zones, frame.faces
+    )
+    prepared = standard.prepare(frame.members, arrays, options)
+    rated = tuple(row for row, case in enumerate(cases) if case.rated)
+    acting = demands(effects, critical_rows(stations, critical[:, 0], critical[:, 1]), rated)
+    first = stations.first_rows(len(subjects))
+    states = tuple(
+        Evaluated(state, check, worst_of(check, first[:-1]))
+        for state in standard.limit_states
+        for check in [state.check(prepared, acting.total)]
+    )
+    return Batch(
+        subjects=tuple(subjects),
+        stations=stations,
+        first=first,
+        prepared=prepared,
+        demand=acting.total,
+        states=states,
+        factors=_factors(standard, prepared, acting, stations, len(subjects), cases),
+        places=verdict.Places(tuple(combinations), effects.moment.shape[1], stations.x),
+        envelope=_envelope(acting.total, states),
+        notes=standard.notes(prepared),
+        basis=standard.basis(prepared),
+    )
+
+
+def _frame(subjects: Sequence[Subject], cases: Sequence[Case]) -> _Frame:
+    runs, outlines = run_table(subjects)
+    spans = span_table([subject.span for subject in subjects])
+    row_of_case = {case.name: row for row, case in enumerate(cases)}
+    row_of_beam = {subject.beam.key: row for row, subject in enumerate(subjects)}
+    stated = load_table(
+        [load for subject in subjects for load in subject.loads], row_of_beam, row_of_case
+    )
+    weight = self_weight_lines(
+        beam=runs.beam,
+        case=row_of_case[SELF],
+        start=runs.start,
+        end=runs.end,
+        area_start=runs.area,
+        area_end=runs.area,
+        unit_weight=np.array([subject.unit_weight.value for subject in subjects])[runs.beam],
+    )
+    return _Frame(
+        members=members_of(subjects, outlines),
+        runs=runs,
+        zones=stirrup_table(subjects),
+        spans=spans,
+        faces=np.array([subject.faces for subject in subjects]),
+        loads=join_loads(stated, weight),
+    )
+
+
+def _critical_sections(
+    subjects: Sequence[Subject], frame: _Frame, standard: Standard, options: Options
+) -> Floats:
+    """x of the critical section for shear at either end of each beam [mm] (B, 2).
+
+    nan where nearer stations must be checked with their own shear: a free end, an end whose
+    reaction does not compress it, or a concentrated load between the face and that section.
+    """
+    beams = len(subjects)
+    beam = np.repeat(np.arange(beams), 2)
+    side = np.tile([1, -1], beams)
+    at_faces = make_station_arrays(
+        beam, frame.faces.ravel(), side, frame.runs, frame.zones, frame.faces
+    )
+    prepared = standard.prepare(frame.members, at_faces, options)
+    distance = standard.critical_distance(prepared).reshape(beams, 2)
+    critical = frame.faces + distance * np.array([1.0, -1.0])
+    direct = np.array([subject.direct for subject in subjects])
+    held = np.stack([frame.spans.start_kind, frame.spans.end_kind], axis=-1) != FREE
+    middle = frame.faces.mean(axis=1, keepdims=True)
+    short = (critical - middle) * np.array([1.0, -1.0]) > 0.0
+    usable = direct & held & ~short & ~_concentrated(frame, critical)
+    return np.where(usable, critical, np.nan)
+
+
+def _concentrated(frame: _Frame, critical: Floats) -> Bools:
+    """Whether a concentrated load or moment lies between the face and the section (B, 2)."""
+    found = np.zeros(critical.shape, dtype=np.bool_)
+    lump = np.flatnonzero((frame.loads.kind == POINT) | (frame.loads.kind == MOMENT))
+    beam, x = frame.loads.beam[lump], frame.loads.start[lump]
+    near_start, near_end = x <= critical[beam, 0], x >= critical[beam, 1]
+    found[beam[near_start], 0] = True
+    found[beam[near_end], 1] = True
+    return found
+
+
+def _effects(
+    frame: _Frame, critical: Floats, cases: Sequence[Case], combinations: Sequence[Combination]
+) -> tuple[Effects, StationTable]:
+    """Effects at stations that include every place where a greatest moment turns."""
+    factors = factor_array(combinations, cases)
+    fixed = _fixed_places(frame, critical)
+
+    def at(extra: Places) -> tuple[Effects, StationTable]:
+        stations = make_stations(frame.spans, frame.loads, extra)
+        found: CaseEffects = case_effects(frame.spans, frame.loads, stations, len(cases))
+        return combine(found, factors), stations
+
+    turns = places(*turning_places(at(fixed)[0]), two_sided=False)
+    return at(join_places(fixed, turns))
+
+
+def _fixed_places(frame: _Frame, critical: Floats) -> Places:
+    """Everything but loads at which something changes along the beams."""
+    beams = np.arange(critical.shape[0])
+    m, runs, zones = frame.members, frame.runs, frame.zones
+    row, layer = np.nonzero(m.layer_area > 0.0)
+    edges = [
+        (np.repeat(beams, 2), frame.faces.ravel(), True),
+        (np.repeat(beams, 2), critical.ravel(), False),
+        (runs.beam, runs.start, True),
+        (runs.beam, runs.end, True),
+        (row, m.layer_start[row, layer], True),
+        (row, m.layer_end[row, layer], True),
+        (zones.beam, zones.start, True),
+        (zones.beam, zones.end, True),
+    ]
+    return join_places(
+        *(
+            places(beam[finite], x[finite], two_sided=both)
+            for beam, x, both in edges
+            for finite in [np.isfinite(x)]
+        )
+    )
+
+
+def _factors(
+    standard: Standard,
+    prepared: Any,
+    acting: Demands,
+    stations: StationTable,
+    beams: int,
+    cases: Sequence[Case],
+) -> dict[str, Factors]:
+    return {
+        cases[row].name: rating_factors(
+            standard.limit_states, prepared, acting.total, share, stations.beam, beams
+        )
+        for row, share in zip(acting.scaled, acting.shares, strict=True)
+    }
+
+
+def _envelope(demand: Demand, states: Sequence[Evaluated]) -> Envelope:
+    stations = demand.moment.shape[-1]
+    moment, shear = demand.moment.reshape(-1, stations), demand.shear.reshape(-1, stations)
+    return Envelope(
+        moment.max(axis=0),
+        moment.min(axis=0),
+        shear.max(axis=0),
+        shear.min(axis=0),
+        {found.state.name: _worst_resistance(found) for found in states},
+    )
+
+
+def _worst_resistance(found: Evaluated) -> Floats:
+    utilisation = found.check.utilisation
+    shape = utilisation.shape
+    flat = np.where(np.isnan(utilisation), np.inf, utilisation).reshape(-1, shape[-1])
+    resistance = np.broadcast_to(found.check.resistance, shape).reshape(flat.shape)
+    return np.asarray(resistance[flat.argmax(axis=0), np.arange(shape[-1])])
+
+
+def details_at(found: Evaluated, batch: Batch, elements: Ints) -> Any:
+    """Details of a limit state, worked out anew at chosen elements."""
+    shape = batch.demand.moment.shape
+    demand = Demand(
+        **{
+            f.name: np.broadcast_to(getattr(batch.demand, f.name), shape).reshape(-1)[elements]
+            for f in fields(Demand)
+        }
+    )
+    return found.state.check(batch.prepared.take(elements % shape[-1]), demand).details
