@@ -128,3 +128,5 @@ class Standard:
     """Remarks on a Prepared, such as minimum reinforcement."""
     basis: Callable[[Any], dict[str, Floats]]
     """Named arrays (N) that the basis of a rating prints, such as effective depths."""
+    not_checked: tuple[str, ...] = ()
+    """What a reader might expect to be checked and is not: "torsion", "deflection" ..."""
