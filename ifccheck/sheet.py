@@ -7,7 +7,7 @@ from __future__ import annotations
 
 import math
 import re
-from collections.abc import Sequence
+from collections.abc import Callable, Sequence
 from dataclasses import dataclass, fields
 from typing import Any
 
@@ -15,11 +15,14 @@ import numpy as np
 import numpy.typing as npt
 
 from ifccheck.beam import Bars, Beam, Load, Outline, Span, Stirrups
-from ifccheck.rating.results import Rating
+from ifccheck.rating.batch import Batch, details_at
+from ifccheck.rating.results import LimitStateRating, Rating
+from ifccheck.rating.utilisation import Worst
 from ifccheck.standards import CalculationLine
-from ifccheck.units import show
+from ifccheck.units import show, show_ratio
 
 Floats = npt.NDArray[np.float64]
+Ints = npt.NDArray[np.intp]
 
 
 @dataclass(frozen=True, slots=True)
@@ -167,3 +170,107 @@ def _result(value: float, unit: str) -> str:
             return f"{value:.2f} deg"
         case _:
             return f"{_number(value)} {unit}".strip()
+
+
+# From a rated batch to sheets ----------------------------------------------------------------
+
+
+def sheet_maker(batch: Batch, ratings: Sequence[Rating]) -> Callable[[int], Sheet]:
+    """Return a function that makes the sheet of a row of the batch.
+
+    The details of every beam's governing places are worked out once, for all of them together.
+    """
+    details = [details_at(found, batch, _elements(found.worst)) for found in batch.states]
+
+    def sheet(row: int) -> Sheet:
+        subject, rating = batch.subjects[row], ratings[row]
+        checks = tuple(
+            _check(found.state.lines, details[index], row, rating.limit_states[index])
+            for index, found in enumerate(batch.states)
+        )
+        section_x = _section_x(batch, row, rating)
+        return Sheet(
+            beam=subject.beam,
+            rating=rating,
+            span=subject.span,
+            loads=subject.loads,
+            bars=subject.bars,
+            stirrups=subject.stirrups,
+            section=_outline_at(subject.beam, section_x),
+            section_x=section_x,
+            checks=checks,
+            diagrams=_diagrams(batch, row, rating),
+        )
+
+    return sheet
+
+
+def bare_sheet(beam: Beam, rating: Rating) -> Sheet:
+    """Make the sheet of a beam of which nothing could be worked out."""
+    section = beam.runs[0].outline if beam.runs else None
+    return Sheet(beam, rating, None, (), (), (), section, 0.0, (), ())
+
+
+def _elements(worst: Worst) -> Ints:
+    incomplete = worst.incomplete & (worst.utilisation <= 1.0)
+    return np.where(incomplete, worst.incomplete_element, worst.element)
+
+
+def _check(
+    lines: Sequence[CalculationLine], details: Any, row: int, found: LimitStateRating
+) -> SheetCheck:
+    if not found.combination:
+        nothing = "nothing is demanded"
+        return SheetCheck(found.title, found.clause, "", (), found.utilisation, nothing)
+    place = f"at x = {show(found.position, 'length')}, {found.combination}"
+    printed = sheet_lines(values_at(lines, details, row))
+    return SheetCheck(found.title, found.clause, place, printed, found.utilisation, _outcome(found))
+
+
+def _outcome(found: LimitStateRating) -> str:
+    if math.isnan(found.utilisation):
+        return f"not rated: {found.why_not}"
+    demand, resistance = (
+        _result(value, found.demand_unit) for value in (found.demand, found.resistance)
+    )
+    return f"{show_ratio(found.utilisation)}: demand {demand}, resistance {resistance}"
+
+
+def _section_x(batch: Batch, row: int, rating: Rating) -> float:
+    place = rating.governing.position if rating.governing else math.nan
+    span = batch.subjects[row].span
+    return place if math.isfinite(place) else (span.start + span.end) / 2.0
+
+
+def _outline_at(beam: Beam, x: float) -> Outline:
+    held = [run for run in beam.runs if run.start <= x]
+    return (held[-1] if held else beam.runs[0]).outline
+
+
+def _diagrams(batch: Batch, row: int, rating: Rating) -> tuple[Diagram, ...]:
+    stations = slice(int(batch.first[row]), int(batch.first[row + 1]))
+    envelope, x = batch.envelope, batch.stations.x[stations]
+    resistance = {name: values[stations] for name, values in envelope.resistance.items()}
+    inside = batch.prepared.inside[stations]
+    nothing = np.full(x.size, np.nan)
+    sagging = resistance.get("FlexureSagging", nothing)
+    hogging = -resistance.get("FlexureHogging", nothing)
+    shear = np.where(inside, resistance.get("Shear", nothing), np.nan)
+    return (
+        Diagram(
+            "bending moment", "kN*m", x,
+            envelope.moment_high[stations] / 1e6, envelope.moment_low[stations] / 1e6,
+            sagging / 1e6, hogging / 1e6, _governing_x(rating, "Flexure"),
+        ),
+        Diagram(
+            "shear force", "kN", x,
+            envelope.shear_high[stations] / 1e3, envelope.shear_low[stations] / 1e3,
+            shear / 1e3, -shear / 1e3, _governing_x(rating, "Shear"),
+        ),
+    )  # fmt: skip
+
+
+def _governing_x(rating: Rating, name: str) -> float:
+    """Place of the greatest utilisation among the limit states whose name starts so."""
+    found = [s for s in rating.limit_states if s.name.startswith(name) and s.combination]
+    return max(found, key=lambda s: s.utilisation).position if found else math.nan

@@ -68,7 +68,7 @@ def _rating(batch: Batch, row: int, standard: Standard, cases: Sequence[Case]) -
         limit_states=states,
         safe_loads=_safe_loads(batch, row, standard, cases, complete=not reasons),
         reasons=reasons if word is Verdict.NOT_RATED else (),
-        remarks=(*subject.remarks, *_unsettled(word, reasons), *_notes(batch, row)),
+        remarks=(*subject.remarks, *_unsettled(subject, word, reasons), *_notes(batch, row)),
         basis=basis_of(batch, row, governing),
         checked=covered_by([s.state for s in batch.states]),
         not_checked=standard.not_checked,
@@ -81,11 +81,12 @@ def _utilisation(word: Verdict, governing: LimitStateRating | None) -> float:
     return governing.utilisation if governing else 0.0
 
 
-def _unsettled(word: Verdict, reasons: Sequence[Reason]) -> list[Remark]:
+def _unsettled(subject: Subject, word: Verdict, reasons: Sequence[Reason]) -> list[Remark]:
     """A beam that falls short anyway still tells what else could not be settled."""
     if word is Verdict.NOT_RATED:
         return []
-    return [Remark(None, "rating", f"also unsettled: {r.text}", "doubt") for r in reasons]
+    key = subject.beam.key
+    return [Remark(key, "rating", f"also unsettled: {r.text}", "doubt") for r in reasons]
 
 
 def _safe_loads(
