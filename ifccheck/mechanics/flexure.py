@@ -20,6 +20,9 @@ NEWTON_STEPS = 12
 
 MOST_STEPS = 120
 
+FINISHED_SHARE = 0.3
+"""Share of sections in balance above which the rest is worth working on alone."""
+
 
 @dataclass(frozen=True, slots=True)
 class FlexuralStrength:
@@ -196,6 +199,7 @@ def _search(sections: _Sections, deepest: Floats, capacity: Floats) -> Floats:
     """Newton's method kept within a bracket, for all sections at once."""
     found = np.full_like(deepest, np.nan)
     place = np.arange(len(deepest))
+    finished = np.zeros(len(deepest), dtype=np.bool_)
     low, high = np.zeros_like(deepest), deepest
     c = _first_guess(sections, deepest, capacity)
     for step in range(MOST_STEPS):
@@ -210,13 +214,14 @@ def _search(sections: _Sections, deepest: Floats, capacity: Floats) -> Floats:
         done = (np.abs(balance) <= TOLERANCE * capacity) | (high - low <= TOLERANCE * high)
         done |= ~unsafe & (np.abs(better - c) <= TOLERANCE * c)
         found[place[done]] = c[done]
-        if done.all():
+        finished |= done
+        if finished.all():
             break
         c = better
-        if done.any():
-            going = ~done
+        if np.mean(finished) > FINISHED_SHARE:
+            going = ~finished
             sections, place, capacity = sections.take(going), place[going], capacity[going]
-            low, high, c = low[going], high[going], c[going]
+            low, high, c, finished = low[going], high[going], c[going], finished[going]
     return found
 
 

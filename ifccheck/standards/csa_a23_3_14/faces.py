@@ -187,12 +187,11 @@ def _face(
     s = _strength(section, strips, layer_depth, side)
     tension_area = developed.sum(axis=1)
     beyond_ductility = s.neutral_axis_depth > ductility_limit(tension_yield) * d
-    moment = np.where(tension_area == 0.0, 0.0, s.moment)
     outside = beyond_ductility | materials.beyond_concrete_strength(section.strength)
     outside |= (materials.beyond_yield(bars.yield_strength) & section.present).any(axis=1)
     bt = np.minimum(greatest_width(strips, h / 2, h), tension_width_limit * bw)
     return FaceState(
-        moment_resistance=np.where(outside, np.nan, moment),
+        moment_resistance=np.where(outside, np.nan, s.moment),
         effective_depth=d,
         shear_depth=np.fmax(0.9 * d, 0.72 * h),
         web_width=bw,
@@ -219,14 +218,16 @@ def _face(
 def _strength(
     section: SectionState, strips: Floats, layer_depth: Floats, side: Bools
 ) -> FlexuralStrength:
-    """Equilibrium with the factors of the standard and each bar's usable stress."""
+    """Equilibrium with the factors of the standard and each bar's usable stress; none at all
+    where no tension steel is developed."""
     usable = np.where(side, section.pulled, section.pushed) * section.bars.yield_strength
+    held = (side & section.present).any(axis=1, keepdims=True)
     ratio = materials.block_stress_ratio(section.strength)
     return flexural_strength(
         strips=strips,
         layer_depth=layer_depth,
         layer_area=section.bars.area,
-        layer_yield=usable,
+        layer_yield=np.where(held, usable, 0.0),
         layer_diameter=section.bars.diameter,
         block_stress=ratio * materials.CONCRETE_FACTOR * section.strength,
         block_factor=materials.block_depth_ratio(section.strength),

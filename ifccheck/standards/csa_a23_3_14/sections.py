@@ -97,7 +97,8 @@ def prepare(members: Members, stations: Stations, options: Options) -> Prepared:
     strength = members.concrete_strength[stations.beam]
     bars = _layers(members)
     rows, sagging, hogging, steel_yield = _faces(members, bars, stations)
-    back = np.argsort(rows)
+    back = np.empty_like(rows)
+    back[rows] = np.arange(len(rows))
     sagging, hogging, steel_yield = sagging.take(back), hogging.take(back), steel_yield[back]
     strips = members.strips
     return Prepared(
@@ -198,9 +199,10 @@ def _groups(members: Members, stations: Stations) -> Iterator[tuple[Ints, int, i
     """Rows of stations with about as many layers and strips, and those numbers."""
     layers = _room(members.layer_area > 0.0)[stations.beam]
     strips = _room(members.strips[..., 1] > members.strips[..., 0])[stations.section]
-    kinds, kind = np.unique(np.stack([layers, strips]), axis=1, return_inverse=True)
-    for index, (layer_count, strip_count) in enumerate(kinds.T.tolist()):
-        yield np.flatnonzero(kind.ravel() == index), layer_count, strip_count
+    most = int(strips.max(initial=1)) + 1
+    kind = layers * most + strips
+    for code in np.flatnonzero(np.bincount(kind)).tolist():
+        yield np.flatnonzero(kind == code), code // most, code % most
 
 
 def _room(used: Bools) -> Ints:
