@@ -42,6 +42,6 @@ def make_context(file: Any, schema: str) -> Context:
         schema=schema,
         units=units,
         relations=relations,
-        placements=Placements(file, units.length),
+        placements=Placements(file, units.length, units.angle),
         properties=Properties(file, units, relations),
     )

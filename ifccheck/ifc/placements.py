@@ -20,9 +20,10 @@ PARALLEL = 1e-9
 class Placements:
     """The placements of a model's products, each worked out once."""
 
-    def __init__(self, file: Any, scale: float) -> None:
+    def __init__(self, file: Any, scale: float, angle_scale: float = 1.0) -> None:
         self._file = file
-        self._scale = scale
+        self.scale = scale
+        self.angle_scale = angle_scale
         self._objects: dict[int, Matrix] = {}
         self._axes: dict[int, Matrix] = {}
         self._grid_of_axis: dict[int, Entity] | None = None
@@ -86,11 +87,25 @@ class Placements:
             raise UnreadableError(f"{label(position)} is no axis placement that is read")
         if axis is None and reference is None and not any(origin):
             return IDENTITY
-        matrix = rigid(
-            None if axis is None else axis[0], None if reference is None else reference[0]
-        )
+        matrix = rigid(_ratios(axis), _ratios(reference))
         for row, coordinate in enumerate(origin):
-            matrix[row, 3] = coordinate * self._scale
+            matrix[row, 3] = coordinate * self.scale
+        return matrix
+
+    def operator(self, operator: Entity) -> Matrix:
+        """Return a Cartesian transformation operator, which may scale and mirror [mm]."""
+        flat = operator.is_a("IfcCartesianTransformationOperator2D")
+        first, second, third = (get(operator, name) for name in ("Axis1", "Axis2", "Axis3"))
+        matrix = rigid(_ratios(third), _ratios(first))
+        if first is None and flat and second is not None:
+            along = unit(second[0])
+            matrix[:3, 0] = (along[1], -along[0], 0.0)
+            matrix[:3, 1] = along
+        elif matrix[:3, 1] @ (unit(second[0]) if second is not None else (0.0, 1.0, 0.0)) < 0:
+            matrix[:3, 1] = -matrix[:3, 1]
+        matrix[:3, :3] *= _scales(operator)
+        for row, coordinate in enumerate(get(operator, "LocalOrigin")[0]):
+            matrix[row, 3] = coordinate * self.scale
         return matrix
 
     def _on_grid(self, placement: Entity, parent: Matrix) -> Matrix:
@@ -101,7 +116,7 @@ class Placements:
         grid = self._grid(axes[0])
         grid_matrix = self.matrix(grid)
         lines = [self._grid_line(axis) for axis in axes]
-        offsets = [value * self._scale for value in several(intersection, "OffsetDistances")]
+        offsets = [value * self.scale for value in several(intersection, "OffsetDistances")]
         point = cross(lines[0], lines[1], offsets)
         height = offsets[2] if len(offsets) > 2 else 0.0
         matrix = self._grid_direction(placement, lines[0])
@@ -137,7 +152,21 @@ class Placements:
             raise UnreadableError(f"grid axis {label(axis)} is no straight polyline")
         ends = [point[0][:2] for point in curve[0]]
         line = np.array(ends if get(axis, "SameSense") is not False else ends[::-1], dtype=float)
-        return line * self._scale
+        return line * self.scale
+
+
+def _ratios(direction: Entity | None) -> Any:
+    return None if direction is None else direction[0]
+
+
+def _scales(operator: Entity) -> tuple[float, float, float]:
+    first = get(operator, "Scale")
+    first = 1.0 if first is None else float(first)
+    others = (get(operator, "Scale2"), get(operator, "Scale3"))
+    second, third = (first if value is None else float(value) for value in others)
+    if not all(np.isfinite(value) and value != 0.0 for value in (first, second, third)):
+        raise UnreadableError(f"{label(operator)} scales to nothing")
+    return first, second, third
 
 
 def rigid(axis: Any, reference: Any) -> Matrix:
