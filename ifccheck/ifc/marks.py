@@ -10,7 +10,7 @@ from dataclasses import dataclass
 from ifccheck.ifc.lexer import Comment, Scan
 
 _BEGIN = "/* Results of ifccheck begin{how}. Source sha256 {sha256}. */"
-_END = b"/* Results of ifccheck end. */"
+_END = "/* Results of ifccheck end. */"
 _BREAK_ADDED = ", with the line break before this line"
 _BEGIN_PATTERN = re.compile(
     rb"/\* Results of ifccheck begin(?P<how>[^.]*)\. Source sha256 (?P<sha256>[0-9a-f]{64})\. \*/"
@@ -26,12 +26,12 @@ class _Block:
     sha256: str
 
 
-def with_block(source: bytes, scan: Scan, sha256: str, lines: Sequence[bytes]) -> bytes:
+def with_block(source: bytes, scan: Scan, sha256: str, lines: Sequence[str]) -> bytes:
     """Add lines, between their marks, at the end of the last DATA section."""
     how = "" if scan.on_own_line else _BREAK_ADDED
-    begin = _BEGIN.format(how=how, sha256=sha256).encode()
+    begin = _BEGIN.format(how=how, sha256=sha256)
     lead = b"" if scan.on_own_line else scan.newline
-    block = scan.newline.join((begin, *lines, _END, b""))
+    block = scan.newline.decode().join((begin, *lines, _END, "")).encode("ascii")
     return b"".join((source[: scan.insertion], lead, block, source[scan.insertion :]))
 
 
@@ -59,7 +59,7 @@ def _find(data: bytes, scan: Scan) -> _Block | None:
         return None
     first, last = marks
     begin = _BEGIN_PATTERN.fullmatch(data, first.start, first.stop)
-    if begin is None or data[last.start : last.stop] != _END:
+    if begin is None or data[last.start : last.stop] != _END.encode():
         return None
     break_added = begin["how"].decode() == _BREAK_ADDED
     start = first.start - (_break_before(data, first.start) if break_added else 0)

@@ -40,7 +40,7 @@ def rated_bytes(opened: OpenedModel, sets: Sequence[ResultSet]) -> bytes:
     owner = _owner_history(opened, lines.add)
     for result, kept in written:
         _add_set(lines, result, kept, units, owner)
-    return with_block(opened.source, opened.scan, opened.sha256, lines.encoded)
+    return with_block(opened.source, opened.scan, opened.sha256, lines.written)
 
 
 def packed(opened: OpenedModel, data: bytes) -> bytes:
@@ -64,11 +64,11 @@ class _Lines:
 
     def __init__(self, numbers: Iterator[int]) -> None:
         self._numbers = numbers
-        self.encoded: list[bytes] = []
+        self.written: list[str] = []
 
     def add(self, instance: str) -> int:
         number = next(self._numbers)
-        self.encoded.append(f"#{number}={instance};".encode("ascii"))
+        self.written.append(f"#{number}={instance};")
         return number
 
 
