@@ -1,0 +1,147 @@
+"""The command line: words to one pipeline call, and exit statuses. No engineering."""
+
+from __future__ import annotations
+
+import sys
+from collections.abc import Callable
+from pathlib import Path
+from typing import TYPE_CHECKING, Any
+
+import click
+
+from ifccheck import __version__
+from ifccheck.errors import IfccheckError
+
+if TYPE_CHECKING:
+    from rich.console import Console
+
+FILE = click.Path(path_type=Path)
+OUTPUTS = ("model", "html", "csv", "json")
+_CAUTION = (
+    "An aid for a licensed engineer. Local codes and the engineer's judgement govern; every "
+    "result rests on the assumptions that it lists."
+)
+
+
+@click.group(
+    context_settings={"help_option_names": ["-h", "--help"]}, epilog=_CAUTION, no_args_is_help=True
+)
+@click.version_option(__version__, prog_name="ifccheck")
+def main() -> None:
+    """Rate the reinforced-concrete beams of an IFC model by a published standard."""
+
+
+@main.command()
+@click.argument("models", nargs=-1, required=True, type=FILE, metavar="MODEL...")
+@click.option("--brief", required=True, type=FILE, help="The engineer's brief (TOML).")
+@click.option("--out", required=True, type=FILE, help="Folder for the results.")
+@click.option(
+    "--only",
+    type=click.Choice(OUTPUTS),
+    multiple=True,
+    help="Write only this result; may be repeated. All four are written without it.",
+)
+def rate(models: tuple[Path, ...], brief: Path, out: Path, only: tuple[str, ...]) -> None:
+    """Rate every beam and write the rated model, the summary, the table and the data.
+
+    The exit status is 0 where every beam in scope is adequate, 3 where some fall short or are
+    not rated, 2 where the command or the brief is wrong, and 1 where a model cannot be read or
+    a result cannot be written.
+    """
+    from ifccheck import pipeline
+    from ifccheck.publish.terminal import closing_table
+
+    console = _console()
+    with _progress() as say:
+        run = _guarded(lambda: pipeline.rate(models, brief, say))
+        written = _guarded(lambda: pipeline.publish(run, out, only or OUTPUTS, say))
+    for report in run.reports:
+        closing_table(report, console, written[report.model.file_name])
+    sys.exit(run.exit_status)
+
+
+@main.command()
+@click.argument("model", type=FILE)
+@click.option("--brief", type=FILE, help="The engineer's brief, for its property mapping.")
+def survey(model: Path, brief: Path | None) -> None:
+    """Show what a model holds and what a rating would lack."""
+    from ifccheck import pipeline
+    from ifccheck.publish.terminal import survey_table
+
+    with _progress() as say:
+        found = _guarded(lambda: pipeline.survey(model, brief, say))
+    _console().print(survey_table(found.model, found.missing))
+
+
+@main.command()
+@click.argument("model", type=FILE)
+@click.argument("beam")
+@click.option("--brief", required=True, type=FILE, help="The engineer's brief (TOML).")
+def sheet(model: Path, beam: str, brief: Path) -> None:
+    """Print the line-by-line calculation of BEAM (its GlobalId, Tag or Name)."""
+    from ifccheck import pipeline
+    from ifccheck.publish.terminal import sheet_text
+
+    with _progress() as say:
+        sheets = _guarded(lambda: pipeline.sheets(model, beam, brief, say))
+    console = _console()
+    for each in sheets:
+        console.print(sheet_text(each))
+
+
+@main.command()
+def standards() -> None:
+    """List the standards that can be named in a brief."""
+    from ifccheck import pipeline
+    from ifccheck.publish.terminal import standards_table
+
+    _console().print(standards_table(pipeline.standards()))
+
+
+def _console() -> Console:
+    from rich.console import Console
+
+    return Console(markup=False, highlight=False, emoji=False, soft_wrap=False)
+
+
+class _Silent:
+    """Stands in for a progress display where no one watches."""
+
+    def __enter__(self) -> Callable[[str], None]:
+        return lambda _: None
+
+    def __exit__(self, *_: object) -> None:
+        return None
+
+
+class _Shown:
+    """A line on the terminal that tells which stage the run is in."""
+
+    def __init__(self) -> None:
+        from rich.console import Console
+        from rich.text import Text
+
+        self._text = Text
+        self._status = Console(stderr=True).status("")
+
+    def __enter__(self) -> Callable[[str], None]:
+        self._status.start()
+        return lambda stage: self._status.update(self._text(stage))
+
+    def __exit__(self, *_: object) -> None:
+        self._status.stop()
+
+
+def _progress() -> _Silent | _Shown:
+    return _Shown() if sys.stderr.isatty() else _Silent()
+
+
+def _guarded(call: Callable[[], Any]) -> Any:
+    """Turn an error for people into its one line and its exit status."""
+    try:
+        return call()
+    except IfccheckError as error:
+        message = " ".join(str(error).split())
+        printable = "".join(c if c.isprintable() else "?" for c in message)
+        click.echo(f"ifccheck: {printable}", err=True)
+        sys.exit(error.exit_status)
