@@ -1,0 +1,287 @@
+"""The elevation of a beam: its outline, supports, loads, bars and stirrups to scale."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable, Sequence
+from dataclasses import dataclass
+from functools import cached_property
+
+from ifccheck.beam import Anchor, Bars, Load, Run, Span, Stirrups, Support
+from ifccheck.publish.svg import (
+    Place,
+    circle,
+    closed_path,
+    drawing,
+    label,
+    number,
+    path,
+    segment,
+    thinned,
+)
+from ifccheck.sheet import Sheet
+from ifccheck.units import show
+
+WIDTH, LEFT, RIGHT = 760.0, 56.0, 18.0
+"""The strip that elevation and diagrams share, so that a place is the same in all of them."""
+SHALLOWEST, DEEPEST = 54.0, 130.0
+EXAGGERATIONS = (1, 2, 3, 4, 5, 6, 8, 10)
+BAND, LETTER, LETTER_WIDTH = 19.0, 10.0, 5.1
+MOST_BANDS = 4
+ARROW = 24.0
+
+
+@dataclass(frozen=True)
+class Frame:
+    """From the beam [mm] to the drawing."""
+
+    length: float
+    depth: float
+    top: float = 0.0
+    """Of the beam on the drawing"""
+
+    @cached_property
+    def along(self) -> float:
+        """Drawing units per mm of length."""
+        return (WIDTH - LEFT - RIGHT) / max(self.length, 1.0)
+
+    @cached_property
+    def exaggeration(self) -> int:
+        """How many times heights are drawn larger than lengths."""
+        natural = max(self.depth, 1.0) * self.along
+        fits = [k for k in EXAGGERATIONS if natural * k <= DEEPEST] or [1]
+        return next((k for k in fits if natural * k >= SHALLOWEST), fits[-1])
+
+    @property
+    def up(self) -> float:
+        """Drawing units per mm of height."""
+        return self.along * self.exaggeration
+
+    @property
+    def bottom(self) -> float:
+        """Of the beam on the drawing."""
+        return self.top + self.depth * self.up
+
+    def x(self, place: float) -> float:
+        """Return where a place along the beam is drawn, kept on the drawing."""
+        return LEFT + min(max(place, -36.0 / self.along), self.length + 12.0 / self.along) * (
+            self.along
+        )
+
+    def z(self, height: float) -> float:
+        """Return where a height above the soffit is drawn."""
+        return self.bottom - height * self.up
+
+
+def elevation(sheet: Sheet) -> str:
+    """Return the elevation of a beam; empty where its body could not be read."""
+    runs = sheet.beam.runs
+    length = sheet.beam.length or max((run.end for run in runs), default=0.0)
+    if not runs or length <= 0.0:
+        return ""
+    depth = max(z for run in runs for outline in _outlines(run) for _, z in outline)
+    above = _Loads([load for load in sheet.loads if load.face == "top"], hung=False)
+    below = _Loads([load for load in sheet.loads if load.face == "bottom"], hung=True)
+    frame = Frame(length, depth, top=16.0 + above.height)
+    foot = frame.bottom + below.height
+    parts = [
+        above.drawn(frame),
+        below.drawn(frame),
+        _body(runs, frame),
+        *(_stirrup_set(stirrups, frame, foot) for stirrups in sheet.stirrups),
+        *(_bar_layer(i, bars, frame) for i, bars in enumerate(sheet.bars)),
+        _supports(sheet.span, frame),
+        _span_line(sheet.span, length, frame, foot + 48.0),
+    ]
+    height = foot + 62.0
+    scale = f"heights drawn {frame.exaggeration} times the lengths"
+    told = "to scale" if frame.exaggeration == 1 else scale
+    parts.append(label(WIDTH - RIGHT, 10.0, told, "note end"))
+    return drawing(WIDTH, height, "elevation", f"Elevation of {sheet.beam.mark}", parts)
+
+
+def _outlines(run: Run) -> tuple[tuple[Place, ...], ...]:
+    return (run.outline.rings[0], (run.outline_end or run.outline).rings[0])
+
+
+def _body(runs: Sequence[Run], frame: Frame) -> str:
+    data = []
+    for run in runs:
+        (low0, high0), (low1, high1) = (
+            (min(z for _, z in ring), max(z for _, z in ring)) for ring in _outlines(run)
+        )
+        x0, x1 = frame.x(run.start), frame.x(run.end)
+        corners = [(x0, low0), (x1, low1), (x1, high1), (x0, high0)]
+        data.append(closed_path((x, frame.z(z)) for x, z in corners))
+    return path("".join(data), "concrete")
+
+
+def _bar_layer(index: int, bars: Bars, frame: Frame) -> str:
+    x0, x1, z = frame.x(bars.start), frame.x(bars.end), frame.z(bars.z)
+    toward = 9.0 if bars.z > frame.depth / 2.0 else -9.0
+    hooks = "".join(
+        segment(x, z, x, z + toward)
+        for x, anchor in ((x0, bars.start_anchor), (x1, bars.end_anchor))
+        if anchor is Anchor.HOOK
+    )
+    dots = "".join(
+        circle(x, z, 2.0, "anchored")
+        for x, anchor in ((x0, bars.start_anchor), (x1, bars.end_anchor))
+        if anchor is Anchor.ANCHORED
+    )
+    share = 0.06 + 0.17 * (index % 5)
+    named = label(x0 + (x1 - x0) * share, z + 3.2, bar_words(bars), "bar-name")
+    return path(segment(x0, z, x1, z) + hooks, "bar") + dots + named
+
+
+def bar_words(bars: Bars) -> str:
+    """Return bars as a drawing names them: "3-25M", or "3 × 20 mm" without a designation."""
+    if bars.designation:
+        return f"{bars.count}-{bars.designation}"
+    return f"{bars.count} × {show(bars.diameter, 'dimension')}"
+
+
+def stirrup_words(stirrups: Stirrups) -> str:
+    """Return stirrups as a drawing names them: "2 legs 10M @ 250 mm"."""
+    legs = "legs not stated" if stirrups.legs is None else f"{stirrups.legs} legs"
+    name = stirrups.designation.partition("@")[0].strip() or show(stirrups.diameter, "dimension")
+    return f"{legs} {name} @ {show(stirrups.spacing, 'dimension')}"
+
+
+def _stirrup_set(stirrups: Stirrups, frame: Frame, foot: float) -> str:
+    bottom = frame.z(stirrups.bottom if stirrups.bottom is not None else 0.08 * frame.depth)
+    top = frame.z(stirrups.top if stirrups.top is not None else 0.92 * frame.depth)
+    x0, x1 = frame.x(stirrups.start), frame.x(stirrups.end)
+    step = stirrups.spacing * frame.along
+    count = max(int((x1 - x0) / step + 1e-6), 1) if step > 0.5 else 0
+    first = x0 + (x1 - x0 - (count - 1) * step) / 2.0
+    height = number(top - bottom)
+    lines = "".join(f"M{number(first + i * step)} {number(bottom)}v{height}" for i in range(count))
+    y = foot + 26.0
+    ends = f"{segment(x0, y - 3, x0, y + 3)}{segment(x0, y, x1, y)}{segment(x1, y - 3, x1, y + 3)}"
+    words = stirrup_words(stirrups)
+    if len(words) * LETTER_WIDTH > x1 - x0:
+        words = f"@ {show(stirrups.spacing, 'dimension')}"
+    return path(lines, "stirrup") + path(ends, "measure") + label((x0 + x1) / 2, y + 11, words, "m")
+
+
+def _supports(span: Span | None, frame: Frame) -> str:
+    if span is None:
+        return ""
+    ends = ((span.start, span.start_support, -1.0), (span.end, span.end_support, 1.0))
+    return "".join(_support(frame.x(x), support, side, frame) for x, support, side in ends)
+
+
+def _support(x: float, support: Support, side: float, frame: Frame) -> str:
+    y = frame.bottom
+    half = support.bearing / 2.0 * frame.along
+    if support.kind == "free":
+        return ""
+    if support.kind == "pinned":
+        half = max(half, 3.0)
+        triangle = closed_path([(x, y), (x - 6, y + 11), (x + 6, y + 11)])
+        return path(triangle, "support") + path(segment(x - half, y, x + half, y), "bearing")
+    edge = x + side * 7.0
+    top, foot = frame.top - 6.0, y + 6.0
+    wall = closed_path([(x, top), (edge, top), (edge, foot), (x, foot)])
+    return path(wall, "support fixed")
+
+
+def _span_line(span: Span | None, length: float, frame: Frame, y: float) -> str:
+    start, end = (span.start, span.end) if span else (0.0, length)
+    x0, x1 = frame.x(start), frame.x(end)
+    line = f"{segment(x0, y - 4, x0, y + 4)}{segment(x0, y, x1, y)}{segment(x1, y - 4, x1, y + 4)}"
+    words = f"{'span' if span else 'length'} {show(end - start, 'length')}"
+    origin = label(LEFT, y + 11.0, "start, x = 0", "m")
+    return path(line, "measure") + label((x0 + x1) / 2.0, y - 4.0, words, "m halo") + origin
+
+
+class _Loads:
+    """The loads on one face, in bands from the beam outwards."""
+
+    def __init__(self, loads: Sequence[Load], hung: bool) -> None:
+        self.lines = [load for load in loads if load.kind == "line"]
+        self.singles = [load for load in loads if load.kind != "line"]
+        self.hung = hung
+        self.rows = _rows(self.singles)
+
+    @property
+    def height(self) -> float:
+        """Drawing units that the loads take."""
+        bands = min(len(self.lines), MOST_BANDS) * BAND + (12.0 if self.more else 0.0)
+        singles = ARROW + 11.0 * max(self.rows, default=0) + 12.0 if self.singles else 0.0
+        return bands + singles + (6.0 if self.hung and (bands or singles) else 0.0)
+
+    @property
+    def more(self) -> int:
+        """Line loads that are only in the table."""
+        return max(len(self.lines) - MOST_BANDS, 0)
+
+    def drawn(self, frame: Frame) -> str:
+        """Return the loads as SVG."""
+        away = 1.0 if self.hung else -1.0
+        base = frame.bottom + 6.0 if self.hung else frame.top
+        peak = max((abs(v) for load in self.lines for v in load.values), default=0.0) or 1.0
+        parts = []
+        for load in self.lines[:MOST_BANDS]:
+            parts.append(_line_load(load, frame, base, away, peak))
+            base += away * BAND
+        if self.more:
+            words = f"and {self.more} more line loads, in the table of loads"
+            parts.append(label(WIDTH / 2.0, base + away * 4.0, words, "load-name"))
+            base += away * 12.0
+        foot = frame.bottom if self.hung else frame.top
+        for load, row in zip(self.singles, self.rows, strict=True):
+            parts.append(_single_load(load, frame, foot, base, away, row))
+        return "".join(parts)
+
+
+def _rows(loads: Iterable[Load]) -> list[int]:
+    """A row for each load's words, so that neighbours do not print over each other."""
+    ordered = list(loads)
+    return [i % 3 for i in range(len(ordered))]
+
+
+def load_words(load: Load) -> str:
+    """Return a load as people write it."""
+    if load.text:
+        return load.text
+    if load.kind == "point":
+        return f"{show(load.values[0], 'force')} at {show(load.start, 'length')}"
+    if load.kind == "moment":
+        return f"{show(load.values[0], 'moment')} at {show(load.start, 'length')}"
+    first, last = (show(value, "line_load") for value in load.values)
+    return first if first == last else f"{first} to {last}"
+
+
+def _line_load(load: Load, frame: Frame, base: float, away: float, peak: float) -> str:
+    x0, x1 = frame.x(load.start), frame.x(load.end)
+    near = base + away * 2.0
+    high0, high1 = (near + away * (2.0 + 11.0 * abs(v) / peak) for v in load.values)
+    shape = closed_path(thinned([(x0, near), (x0, high0), (x1, high1), (x1, near)], 0.0))
+    words = label((x0 + x1) / 2.0, base + away * 8.0 + 3.4, _named(load), "load-name halo")
+    return path(shape, "load") + words
+
+
+def _named(load: Load) -> str:
+    return f"{load.case}: {load_words(load)}"
+
+
+def _single_load(load: Load, frame: Frame, foot: float, base: float, away: float, row: int) -> str:
+    x, tip, tail = frame.x(load.start), foot + away * 1.5, base + away * (ARROW + 11.0 * row)
+    room = len(_named(load)) * LETTER_WIDTH / 2.0
+    middle = min(max(x, LEFT / 4.0 + room), WIDTH - 4.0 - room)
+    words = label(middle, tail + away * 5.0 + 1.5, _named(load), "load-name halo")
+    if load.kind == "moment":
+        turning = _turning(x, (frame.top + frame.bottom) / 2.0, load.values[0])
+        return path(turning, "moment") + path(segment(x, tail, x, frame.top), "leader") + words
+    downward = load.values[0] >= 0.0
+    head_at, point = (max(tip, tail), 1.0) if downward else (min(tip, tail), -1.0)
+    head = closed_path([(x, head_at), (x - 3, head_at - 7 * point), (x + 3, head_at - 7 * point)])
+    return path(segment(x, tail, x, tip), "force") + path(head, "head") + words
+
+
+def _turning(x: float, y: float, moment: float) -> str:
+    """Three quarters of a circle with its point, clockwise for a positive moment."""
+    sweep, side = (1, 1.0) if moment >= 0 else (0, -1.0)
+    arc = f"M{number(x - 11 * side)} {number(y)}A11 11 0 1 {sweep} {number(x)} {number(y + 11)}"
+    return arc + f"l{number(6 * side)} -4m{number(-6 * side)} 4l{number(6 * side)} 5"

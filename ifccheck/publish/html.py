@@ -1,0 +1,406 @@
+"""The HTML summary: one file that shows the whole answer and asks the network for nothing."""
+
+from __future__ import annotations
+
+import base64
+import hashlib
+import math
+from collections import Counter
+from collections.abc import Iterable, Iterator, Mapping, Sequence
+from dataclasses import dataclass
+
+from markupsafe import Markup
+
+from ifccheck.beam import Beam, Combination, OutOfScope, Verdict
+from ifccheck.publish.plan import framing_plans
+from ifccheck.publish.report import Assumption, CaseSummary, Counts, Report
+from ifccheck.publish.sheet_html import (
+    SHEETS_PER_BLOCK,
+    Block,
+    foot_line,
+    packed,
+    ratings_in_order,
+    sheet_html,
+)
+from ifccheck.publish.svg import number
+from ifccheck.publish.templates import asset, template
+from ifccheck.publish.tint import BANDS, band
+from ifccheck.publish.words import (
+    CAUTIONS,
+    factor_words,
+    joined,
+    utilisation_words,
+    verdict_phrase,
+)
+from ifccheck.rating import Rating
+
+WORST = 10
+MOST_NAMED = 12
+"""Marks named in a list before the rest are only counted."""
+GAUGE_END = 1.25
+
+
+def render(report: Report) -> str:
+    """Return the summary as one HTML file."""
+    rows = _rows(report)
+    numbers = {row.key: row.number for row in rows}
+    style, script = asset("page.css"), asset("page.js")
+    return template("page.html.j2").render(
+        policy=_policy(style, script),
+        style=Markup(style),
+        script=Markup(script),
+        model=report.model,
+        title_block=_title_block(report),
+        counts=report.counts,
+        tallies=_tallies(report.counts),
+        proportion=Markup(_proportion(report.counts)),
+        covered=joined(w for r in report.ratings.values() if _adequate(r) for w in r.checked),
+        worst=[row for row in rows if row.utilisation][:WORST],
+        cases=[_case(case, report, numbers) for case in report.cases],
+        plans=_plans(report, numbers),
+        legend=[(name, words) for _, name, words in BANDS]
+        + [("over", "falls short"), ("none", "not rated")],
+        storeys=_storeys(report),
+        verdicts=[str(verdict) for verdict in Verdict],
+        governing=_governing(report),
+        rows=rows,
+        unrated=_unrated(report, rows),
+        out_of_scope=_out_of_scope(report.model.out_of_scope),
+        assumptions=[_assumption(a, report) for a in report.assumptions],
+        remarks=report.remarks,
+        sources=_sources(report),
+        combined=_combined(report.combinations),
+        combinations=_combinations(report.combinations),
+        cautions=CAUTIONS,
+        foot=foot_line(report),
+        blocks=_blocks(report, rows),
+        sheets_per_block=SHEETS_PER_BLOCK,
+    )
+
+
+def _policy(style: str, script: str) -> str:
+    """Nothing from anywhere, and of script and style only the very texts in the file."""
+    return (
+        f"default-src 'none'; script-src {_fingerprint(script)}; style-src {_fingerprint(style)};"
+        " base-uri 'none'; form-action 'none'"
+    )
+
+
+def _fingerprint(text: str) -> str:
+    digest = base64.b64encode(hashlib.sha256(text.encode()).digest()).decode("ascii")
+    return f"'sha256-{digest}'"
+
+
+def _adequate(rating: Rating) -> bool:
+    return rating.verdict is Verdict.ADEQUATE
+
+
+@dataclass(frozen=True, slots=True)
+class _Safe:
+    value: str
+    factor: str
+    text: str
+
+
+@dataclass(frozen=True, slots=True)
+class _Row:
+    """One line of the table of beams."""
+
+    number: int
+    key: str
+    mark: str
+    storey: str
+    storey_index: int
+    section: str
+    span: str
+    verdict: str
+    phrase: str
+    why: str
+    band: str
+    utilisation: str
+    used: str
+    gauge: Markup
+    governs: str
+    governs_index: str
+    x: str
+    safe: tuple[_Safe, ...]
+
+
+def _rows(report: Report) -> list[_Row]:
+    storeys = {name: i for i, name in enumerate(_storeys(report))}
+    governing = {title: i for i, title in enumerate(_governing(report))}
+    ordered = ratings_in_order(report.ratings[beam.key] for beam in report.model.beams)
+    return [_row(i, rating, report, storeys, governing) for i, rating in enumerate(ordered)]
+
+
+def _row(
+    i: int,
+    rating: Rating,
+    report: Report,
+    storeys: Mapping[str, int],
+    governing: Mapping[str, int],
+) -> _Row:
+    beam = report.beam(rating.beam)
+    worst = rating.governing
+    known = not math.isnan(rating.utilisation)
+    return _Row(
+        number=i,
+        key=beam.key,
+        mark=beam.mark,
+        storey=beam.storey,
+        storey_index=storeys[beam.storey],
+        section=beam.runs[0].outline.name if beam.runs else "",
+        span=_span(beam, report),
+        verdict=str(rating.verdict),
+        phrase=verdict_phrase(rating),
+        why=_why(rating),
+        band=band(rating),
+        utilisation=_sortable(rating.utilisation),
+        used=utilisation_words(rating.utilisation),
+        gauge=Markup(_gauge(rating.utilisation, band(rating))) if known else Markup(""),
+        governs=worst.title if worst else "",
+        governs_index=str(governing[worst.title]) if worst else "",
+        x=_metres(worst.position) if worst else "",
+        safe=tuple(_safe(rating, case.case) for case in report.cases),
+    )
+
+
+def _span(beam: Beam, report: Report) -> str:
+    span = report.spans.get(beam.key)
+    return _metres(span.end - span.start) if span else ""
+
+
+def _why(rating: Rating) -> str:
+    if not rating.reasons:
+        return ""
+    more = len(rating.reasons) - 1
+    return rating.reasons[0].text + (f" (and {more} more)" if more else "")
+
+
+def _sortable(value: float) -> str:
+    """A number for the script to sort by; empty for one that is not known."""
+    if math.isnan(value):
+        return ""
+    return "Infinity" if math.isinf(value) else repr(value)
+
+
+def _metres(place: float) -> str:
+    return f"{place / 1000.0:.2f}" if math.isfinite(place) else ""
+
+
+def _safe(rating: Rating, case: str) -> _Safe:
+    found = next((safe for safe in rating.safe_loads if safe.case == case), None)
+    if found is None:
+        return _Safe("", "–", "")
+    return _Safe(_sortable(found.factor), factor_words(found.factor), found.text)
+
+
+def _gauge(utilisation: float, kind: str) -> str:
+    """A bar that ends where the scale ends, with a stroke at 1."""
+    width = min(utilisation, GAUGE_END) / GAUGE_END * 50.0
+    bar = f'<path class="{kind} body" d="M0 2h{number(width)}v6h{number(-width)}z"/>'
+    full = number(50.0 / GAUGE_END)
+    return (
+        f'<svg class="gauge" viewBox="0 0 51 10" aria-hidden="true">{bar}'
+        f'<path class="one" d="M{full} 0v10"/></svg>'
+    )
+
+
+def _title_block(report: Report) -> list[tuple[str, str]]:
+    return [
+        ("model", report.model.file_name),
+        ("standard", report.standard_title),
+        ("actions", report.actions),
+        ("brief", report.brief_name),
+        ("model hash", report.model.sha256[:16]),
+        ("brief hash", report.brief_sha256[:16]),
+    ]
+
+
+def _sources(report: Report) -> list[tuple[str, str]]:
+    return [
+        ("standard", report.standard_title),
+        ("identifier", report.standard_id),
+        ("edition", report.standard_edition),
+        ("shear method", report.shear_method),
+        ("combinations from", report.actions),
+        ("model", f"{report.model.file_name} ({report.model.schema})"),
+        ("model SHA-256, without results", report.model.sha256),
+        ("brief", report.brief_name),
+        ("brief SHA-256", report.brief_sha256),
+        ("program", f"ifccheck {report.version}"),
+    ]
+
+
+@dataclass(frozen=True, slots=True)
+class _Tally:
+    kind: str
+    swatch: str
+    count: int
+    words: str
+
+
+def _tallies(counts: Counts) -> list[_Tally]:
+    return [
+        _Tally("falls-short", "over", counts.falls_short, "falls short"),
+        _Tally("not-rated", "none", counts.not_rated, "not rated"),
+        _Tally("adequate", "u3", counts.adequate, "adequate"),
+        _Tally("out", "out", counts.out_of_scope, "out of scope"),
+    ]
+
+
+def _proportion(counts: Counts) -> str:
+    """The beams in scope as one bar."""
+    parts, left = [], 0.0
+    kinds = (("over", counts.falls_short), ("none", counts.not_rated), ("u3", counts.adequate))
+    for kind, count in kinds:
+        width = 600.0 * count / max(counts.in_scope, 1)
+        if count:
+            parts.append(
+                f'<rect class="{kind} part" x="{number(left)}" y="1" width="{number(width)}"'
+                ' height="12"/>'
+            )
+        left += width
+    return f'<svg class="proportion" viewBox="0 0 600 14" aria-hidden="true">{"".join(parts)}</svg>'
+
+
+@dataclass(frozen=True, slots=True)
+class _Case:
+    name: str
+    nature: str
+    kind: str
+    factor: str
+    row: int | None
+    mark: str
+    text: str
+    reached: int
+    unrated: list[tuple[int, str]]
+    more: int
+
+
+def _case(case: CaseSummary, report: Report, numbers: Mapping[str, int]) -> _Case:
+    governing = case.governing_beam
+    named = case.unrated_in_path[:MOST_NAMED]
+    return _Case(
+        name=case.case,
+        nature=case.nature,
+        kind="short" if case.factor < 1.0 else "unknown" if math.isnan(case.factor) else "",
+        factor=factor_words(case.factor),
+        row=numbers[governing] if governing else None,
+        mark=report.beam(governing).mark if governing else "",
+        text=case.text,
+        reached=case.beams_reached,
+        unrated=[(numbers[key], report.beam(key).mark) for key in named],
+        more=len(case.unrated_in_path) - len(named),
+    )
+
+
+@dataclass(frozen=True, slots=True)
+class _Plan:
+    storey: str
+    elevation: float | None
+    beams: int
+    not_drawn: tuple[str, ...]
+    svg: Markup
+
+
+def _plans(report: Report, numbers: Mapping[str, int]) -> list[_Plan]:
+    return [
+        _Plan(plan.storey, plan.elevation, plan.beams, plan.not_drawn, Markup(plan.svg))
+        for plan in framing_plans(report.model, report.ratings, numbers)
+    ]
+
+
+def _storeys(report: Report) -> list[str]:
+    heights = {storey.name: storey.elevation for storey in report.model.storeys}
+    names = {beam.storey for beam in report.model.beams}
+    return sorted(names, key=lambda name: (heights.get(name, math.inf), name))
+
+
+def _governing(report: Report) -> list[str]:
+    return sorted({r.governing.title for r in report.ratings.values() if r.governing})
+
+
+@dataclass(frozen=True, slots=True)
+class _Unrated:
+    text: str
+    rows: list[_Row]
+
+
+def _unrated(report: Report, rows: Sequence[_Row]) -> list[_Unrated]:
+    """Reasons, the most frequent first, each with all its beams."""
+    found: dict[str, list[_Row]] = {}
+    for row in rows:
+        for reason in report.ratings[row.key].reasons:
+            found.setdefault(reason.text, []).append(row)
+    ordered = sorted(found.items(), key=lambda item: (-len(item[1]), item[0]))
+    return [_Unrated(text, its_rows) for text, its_rows in ordered]
+
+
+@dataclass(frozen=True, slots=True)
+class _OutOfScope:
+    reason: str
+    count: int
+    items: list[tuple[str, int]]
+
+
+def _out_of_scope(members: Iterable[OutOfScope]) -> list[_OutOfScope]:
+    groups: dict[str, Counter[str]] = {}
+    for member in members:
+        where = f", {member.storey}" if member.storey else ""
+        words = f"{member.name or member.guid}{where}: {member.evidence}"
+        groups.setdefault(member.reason, Counter())[words] += 1
+    return [
+        _OutOfScope(reason, found.total(), sorted(found.items()))
+        for reason, found in sorted(groups.items())
+    ]
+
+
+@dataclass(frozen=True, slots=True)
+class _Assumption:
+    text: str
+    count: str
+    marks: str
+
+
+def _assumption(assumption: Assumption, report: Report) -> _Assumption:
+    if not assumption.beams:
+        return _Assumption(assumption.text, "all", "")
+    marks = [report.beam(key).mark for key in assumption.beams]
+    if len(marks) > MOST_NAMED:
+        more = len(marks) - MOST_NAMED
+        marks = [*marks[:MOST_NAMED], f"and {more} more"]
+    return _Assumption(assumption.text, str(len(assumption.beams)), ", ".join(marks))
+
+
+@dataclass(frozen=True, slots=True)
+class _Combination:
+    name: str
+    kind: str
+    factors: list[str]
+
+
+def _combined(combinations: Iterable[Combination]) -> list[str]:
+    return list(dict.fromkeys(case for combination in combinations for case in combination.factors))
+
+
+def _combinations(combinations: Sequence[Combination]) -> list[_Combination]:
+    cases = _combined(combinations)
+    return [
+        _Combination(c.name, c.kind, [_factors(c.factors.get(case)) for case in cases])
+        for c in combinations
+    ]
+
+
+def _factors(pair: tuple[float, float] | None) -> str:
+    if pair is None:
+        return "–"
+    unfavourable, favourable = pair
+    if unfavourable == favourable:
+        return f"{unfavourable:g}"
+    return f"{unfavourable:g} / {favourable:g}"
+
+
+def _blocks(report: Report, rows: Sequence[_Row]) -> Iterator[Block]:
+    foot = foot_line(report)
+    return packed(sheet_html(report.sheet(row.key), foot) for row in rows)

@@ -1,0 +1,63 @@
+"""Quantities of a rating as people read them: a figure and its unit apart, for columns."""
+
+from __future__ import annotations
+
+import math
+
+from ifccheck.units import ShownKind, show
+
+SHORTEST_IN_METRES = 2000.0
+"""Shorter lengths of a basis, such as a cover, read better in mm."""
+
+KINDS: dict[str, ShownKind] = {
+    "length": "dimension",
+    "force": "force",
+    "line_force": "line_load",
+    "moment": "moment",
+    "pressure": "stress",
+    "area": "area",
+}
+"""How each measure of the domain is shown."""
+
+UNIT_KINDS: dict[str, ShownKind] = {
+    "N*mm": "moment", "N": "force", "mm": "dimension", "mm2": "area", "MPa": "stress",
+    "N/mm": "line_load", "rad": "angle",
+}  # fmt: skip
+"""How a quantity in a unit of the inside is shown."""
+
+
+def quantity_words(value: float, kind: ShownKind) -> str:
+    """Return a quantity with its unit, with a raised dot in products."""
+    return show(value, kind).replace("*", "·")
+
+
+def number_and_unit(value: float, unit: str) -> tuple[str, str]:
+    """Return a quantity given in a unit of the inside as figure and unit for people.
+
+    >>> number_and_unit(187_400.0, "N"), number_and_unit(0.4, "")
+    (('187', 'kN'), ('0.4', ''))
+    """
+    if not math.isfinite(value):
+        return "–", ""
+    kind = UNIT_KINDS.get(unit)
+    if kind is None:
+        return f"{value:.3g}", unit
+    number, _, shown = quantity_words(value, kind).partition(" ")
+    return number, shown
+
+
+def measure_words(value: float | str | bool, measure: str) -> tuple[str, str | None]:
+    """Return figure and unit of a thing that a rating rests on; no unit for a text."""
+    if isinstance(value, str):
+        return value, None
+    if isinstance(value, bool) or measure == "logical":
+        return ("yes" if value else "no"), None
+    if not math.isfinite(value):
+        return "not known", None
+    kind = KINDS.get(measure)
+    if kind is None:
+        return f"{value:.4g}", ""
+    if measure == "length" and abs(value) >= SHORTEST_IN_METRES:
+        kind = "length"
+    number, _, unit = quantity_words(value, kind).partition(" ")
+    return number, unit

@@ -1,0 +1,294 @@
+"""The sheet of one beam as static HTML, and the packing of many of them."""
+
+from __future__ import annotations
+
+import base64
+import math
+import zlib
+from collections.abc import Callable, Iterable, Iterator
+from dataclasses import dataclass
+from functools import cache
+from itertools import islice
+
+from markupsafe import Markup
+
+from ifccheck.beam import Anchor, Bars, Beam, Load, Span, Stirrups
+from ifccheck.publish.drawings import diagram, section
+from ifccheck.publish.elevation import bar_words, elevation, load_words, stirrup_words
+from ifccheck.publish.quantities import measure_words, number_and_unit, quantity_words
+from ifccheck.publish.report import Report
+from ifccheck.publish.templates import template
+from ifccheck.publish.tint import band
+from ifccheck.publish.typeset import formula_html, numbers_html
+from ifccheck.publish.words import (
+    factor_words,
+    falls_short,
+    joined,
+    utilisation_words,
+    verdict_phrase,
+)
+from ifccheck.rating import BasisItem, LimitStateRating, Rating, SafeLoad
+from ifccheck.sheet import Sheet, SheetCheck, SheetLine
+
+SHEETS_PER_BLOCK = 8
+"""Neighbouring sheets share most of their markup: together they deflate to half."""
+SEPARATOR = "\x1e"
+"""Between the sheets of a block; no text that is shown can hold it."""
+
+
+@dataclass(frozen=True, slots=True)
+class Block:
+    """Sheets deflated together, as base64."""
+
+    number: int
+    data: str
+
+
+def sheet_html(sheet: Sheet, foot: str) -> str:
+    """Return the sheet of a beam; ``foot`` is printed at the end of each sheet."""
+    rating = sheet.rating
+    length = sheet.beam.length or max((run.end for run in sheet.beam.runs), default=0.0)
+    return template("sheet.html.j2").render(
+        sheet=sheet,
+        beam=sheet.beam,
+        rating=rating,
+        band=band(rating),
+        phrase=verdict_phrase(rating),
+        used="" if math.isnan(rating.utilisation) else utilisation_words(rating.utilisation),
+        facts=_facts(sheet.beam, sheet.span),
+        elevation=Markup(elevation(sheet)),
+        diagrams=[Markup(diagram(drawn, length)) for drawn in sheet.diagrams],
+        section=Markup(section(sheet)),
+        states=[_state(state) for state in rating.limit_states],
+        safe_loads=[_safe_load(safe) for safe in rating.safe_loads],
+        checks=[_check(check) for check in sheet.checks],
+        loads=[_load(load) for load in sheet.loads],
+        steel=[*map(_bar_row, sheet.bars), *map(_stirrup_row, sheet.stirrups)],
+        basis=[_basis(item) for item in rating.basis],
+        checked=joined(rating.checked),
+        not_checked=joined(rating.not_checked),
+        foot=foot,
+    )
+
+
+def packed(sheets: Iterable[str]) -> Iterator[Block]:
+    """Yield the sheets in blocks, each deflated without a header."""
+    waiting = iter(sheets)
+    number = 0
+    while group := list(islice(waiting, SHEETS_PER_BLOCK)):
+        deflating = zlib.compressobj(9, zlib.DEFLATED, -zlib.MAX_WBITS)
+        text = SEPARATOR.join(group).encode()
+        data = base64.b64encode(deflating.compress(text) + deflating.flush())
+        yield Block(number, data.decode("ascii"))
+        number += 1
+
+
+def foot_line(report: Report) -> str:
+    """Return what identifies the run at the foot of every sheet."""
+    return (
+        f"{report.model.file_name} · {report.standard_title} · brief {report.brief_name} "
+        f"{report.brief_sha256[:12]} · model {report.model.sha256[:12]} · ifccheck {report.version}"
+    )
+
+
+def _facts(beam: Beam, span: Span | None) -> list[tuple[str, str]]:
+    facts = [
+        ("name", beam.name),
+        ("type", beam.type_name),
+        ("storey", beam.storey),
+        ("material", beam.material),
+        ("length", quantity_words(beam.length, "length") if beam.length else ""),
+        ("span", quantity_words(span.end - span.start, "length") if span else ""),
+        ("supports", f"{span.start_support.kind} – {span.end_support.kind}" if span else ""),
+        ("GlobalId", beam.key),
+    ]
+    return [(name, value) for name, value in facts if value]
+
+
+@dataclass(frozen=True, slots=True)
+class _State:
+    title: str
+    counted: bool
+    over: bool
+    used: str
+    x: str
+    demand: str
+    resistance: str
+    unit: str
+    why: str
+
+
+def _state(state: LimitStateRating) -> _State:
+    why = state.why_not or "not known" if math.isnan(state.utilisation) else ""
+    demand, unit = number_and_unit(state.demand, state.demand_unit)
+    return _State(
+        title=state.title,
+        counted=state.counted,
+        over=state.counted and falls_short(state.utilisation),
+        used=utilisation_words(state.utilisation),
+        x=_metres(state.position),
+        demand=demand,
+        resistance=number_and_unit(state.resistance, state.demand_unit)[0],
+        unit=unit,
+        why=why,
+    )
+
+
+@dataclass(frozen=True, slots=True)
+class _Safe:
+    case: str
+    factor: str
+    text: str
+    by: str
+
+
+def _safe_load(safe: SafeLoad) -> _Safe:
+    by = f"{safe.governing} at x = {_metres(safe.position)} m" if safe.governing else ""
+    return _Safe(safe.case, factor_words(safe.factor), safe.text, by)
+
+
+@dataclass(frozen=True, slots=True)
+class _Line:
+    text: str
+    symbol: Markup
+    formula: Markup
+    numbers: Markup
+    value: str
+    unit: str
+    clause: str
+
+
+@dataclass(frozen=True, slots=True)
+class _Check:
+    title: str
+    place: str
+    clause: str
+    lines: list[_Line]
+    over: bool
+    used: str
+    outcome: str
+
+
+def _check(check: SheetCheck) -> _Check:
+    _, _, outcome = check.outcome.partition(": ")
+    return _Check(
+        title=check.title,
+        place=check.place,
+        clause=check.clause,
+        lines=[_line(line) for line in check.lines],
+        over=falls_short(check.utilisation),
+        used=utilisation_words(check.utilisation),
+        outcome=outcome or check.outcome,
+    )
+
+
+def _line(line: SheetLine) -> _Line:
+    value, _, unit = line.result.partition(" ")
+    return _Line(
+        text=line.text,
+        symbol=_set(line.symbol, formula_html),
+        formula=_set(line.formula, formula_html),
+        numbers=_set(line.numbers, numbers_html),
+        value=value.replace("-", "−") if value[:1] == "-" else value,
+        unit=unit.replace("*", "·"),
+        clause=line.clause,
+    )
+
+
+def _set(text: str, typeset: Callable[[str], str]) -> Markup:
+    return Markup(typeset(text))
+
+
+@dataclass(frozen=True, slots=True)
+class _Load:
+    case: str
+    text: str
+    start: str
+    end: str
+    face: str
+    origin: str
+
+
+def _load(load: Load) -> _Load:
+    end = _metres(load.end) if load.kind == "line" else ""
+    face = "hung from the soffit" if load.face == "bottom" else "top"
+    return _Load(load.case, load_words(load), _metres(load.start), end, face, load.origin)
+
+
+@dataclass(frozen=True, slots=True)
+class _Steel:
+    name: str
+    area: str
+    height: str
+    start: str
+    end: str
+    ends: str
+    strength: str
+    assumed: bool
+    origin: str
+
+
+def _bar_row(bars: Bars) -> _Steel:
+    steel = bars.yield_strength
+    return _Steel(
+        name=bar_words(bars),
+        area=f"{bars.count * bars.area:.0f}",
+        height=f"{bars.z:.0f}",
+        start=_metres(bars.start),
+        end=_metres(bars.end),
+        ends=_ends(bars.start_anchor, bars.end_anchor),
+        strength=f"{steel.value:.0f}" if steel else "not known",
+        assumed=bool(steel and steel.assumed),
+        origin=bars.origin,
+    )
+
+
+@cache
+def _ends(start: Anchor, end: Anchor) -> str:
+    if start is end:
+        return str(start)
+    return f"{start} – {end}"
+
+
+def _stirrup_row(stirrups: Stirrups) -> _Steel:
+    steel = stirrups.yield_strength
+    legs = stirrups.legs
+    return _Steel(
+        name=stirrup_words(stirrups),
+        area="not known" if legs is None else f"{legs * stirrups.leg_area:.0f}",
+        height="",
+        start=_metres(stirrups.start),
+        end=_metres(stirrups.end),
+        ends="closed" if stirrups.closed else "open",
+        strength=f"{steel.value:.0f}" if steel else "not known",
+        assumed=bool(steel and steel.assumed),
+        origin=stirrups.origin,
+    )
+
+
+@dataclass(frozen=True, slots=True)
+class _Basis:
+    label: str
+    value: str
+    unit: str | None
+    source: str
+    assumed: bool
+
+
+def _basis(item: BasisItem) -> _Basis:
+    value, unit = measure_words(item.value, item.measure)
+    return _Basis(item.label, value, unit, item.source, item.assumed)
+
+
+def _metres(place: float) -> str:
+    return f"{place / 1000.0:.2f}" if math.isfinite(place) else "–"
+
+
+def ratings_in_order(ratings: Iterable[Rating]) -> list[Rating]:
+    """Return ratings with the worst first: short of resistance, not rated, most used."""
+    return sorted(ratings, key=_badness)
+
+
+def _badness(rating: Rating) -> tuple[int, float]:
+    order = {"falls short": 0, "not rated": 1, "adequate": 2}[rating.verdict]
+    return order, -rating.utilisation if math.isfinite(rating.utilisation) else -math.inf

@@ -1,0 +1,79 @@
+"""Words for people that every output shares, made safe to show."""
+
+from __future__ import annotations
+
+import math
+import re
+from collections.abc import Iterable
+
+from ifccheck.beam import Verdict
+from ifccheck.rating import Rating
+from ifccheck.units import show_ratio
+
+# Controls, marks that turn the direction of the text round, and halves of a character.
+_UNSHOWABLE = re.compile(
+    "[\x00-\x1f\x7f-\x9f\u061c\u200e\u200f\u2028-\u202e\u2066-\u2069\ufeff\ud800-\udfff]"
+)
+_BLANKS = re.compile(r"[\t\r\n]+")
+
+CAUTIONS = (
+    "This summary is an aid for a licensed engineer, who alone decides whether a beam may carry"
+    " its loads. It is not a certificate.",
+    "Local codes, the conditions of the permit and professional judgement govern over anything"
+    " printed here.",
+    "Every result rests on the model, the brief and the assumptions listed; an input that is"
+    " wrong there makes the result wrong. Check them against the structure as it was built.",
+    "A verdict covers the limit states that it names and no others: what was not checked is"
+    " listed for each beam. The state of the structure (cracks, corrosion, openings, damage) is"
+    " not known to the program.",
+    "A beam that is not rated is neither adequate nor inadequate: nothing may be concluded"
+    " from it, and no load may be put on it on the strength of this summary.",
+)
+
+
+def plain(text: str) -> str:
+    """Return a text on one line that can be shown anywhere: what cannot be shown becomes U+FFFD.
+
+    >>> plain("B-1\\n\\x1b[31m\\u202e")
+    'B-1 �[31m�'
+    """
+    return _UNSHOWABLE.sub("\ufffd", _BLANKS.sub(" ", text))
+
+
+def joined(words: Iterable[str]) -> str:
+    """Return words as a phrase.
+
+    >>> joined(["flexure", "shear", "anchorage"]), joined(["flexure", "flexure"])
+    ('flexure, shear and anchorage', 'flexure')
+    """
+    *most, last = list(dict.fromkeys(words)) or [""]
+    return f"{', '.join(most)} and {last}" if most else last
+
+
+def verdict_phrase(rating: Rating) -> str:
+    """Return the verdict with what it covers: "adequate in flexure and shear"."""
+    if rating.verdict is Verdict.ADEQUATE:
+        return f"adequate in {joined(rating.checked)}"
+    if rating.verdict is Verdict.FALLS_SHORT and rating.governing:
+        short = [state.covers for state in rating.limit_states if falls_short(state.utilisation)]
+        return f"falls short in {joined(short or [rating.governing.covers])}"
+    return str(rating.verdict)
+
+
+def falls_short(utilisation: float) -> bool:
+    """Whether a utilisation is beyond 1; false where it is not known."""
+    return utilisation > 1.0
+
+
+def utilisation_words(utilisation: float) -> str:
+    """Return a utilisation for people, on its true side of 1."""
+    if math.isnan(utilisation):
+        return "–"
+    return "no resistance" if math.isinf(utilisation) else show_ratio(utilisation)
+
+
+def factor_words(factor: float) -> str:
+    """Return a rating factor for people."""
+    if math.isnan(factor):
+        return "not rated"
+    return "not limited" if math.isinf(factor) else show_ratio(factor)
