@@ -28,10 +28,11 @@ class Surroundings:
     """Distance from the face at the beam's start [mm]"""
     end_distance: Floats
     """Distance from the face at the beam's end [mm]"""
-    peak_depth_sagging: Floats
-    """Least dv of the beam with the soffit in tension, where that face has steel [mm]"""
-    peak_depth_hogging: Floats
-    """The same for the top [mm]"""
+    peak_lever_sagging: Floats
+    """Least lever arm that the beam's soffit steel has in flexure, or the least dv if that is
+    greater [mm]; inf where the beam has no steel there"""
+    peak_lever_hogging: Floats
+    """The same of the top [mm]"""
 
 
 def critical_shear_depth(
@@ -75,6 +76,8 @@ def surroundings(
     hogging_area: Floats,
     sagging_area_full: Floats,
     hogging_area_full: Floats,
+    sagging_lever: Floats,
+    hogging_lever: Floats,
 ) -> Surroundings:
     """Find the faces and critical sections that belong to every station.
 
@@ -91,6 +94,8 @@ def surroundings(
         Tension steel of each face, reduced where it is not developed [mm2] (N).
     sagging_area_full, hogging_area_full
         The same as if fully developed [mm2] (N).
+    sagging_lever, hogging_lever
+        Mr over the force of the flexural tension steel [mm] (N); nan where there is none.
 
     Notes
     -----
@@ -118,13 +123,17 @@ def surroundings(
         critical_area_hogging=hogging_area[rows],
         start_distance=x - start,
         end_distance=end - x,
-        peak_depth_sagging=of_beam(
-            np.minimum, np.where(sagging_area_full > 0.0, sagging_depth, np.inf)
-        ),
-        peak_depth_hogging=of_beam(
-            np.minimum, np.where(hogging_area_full > 0.0, hogging_depth, np.inf)
-        ),
+        peak_lever_sagging=_least_lever(sagging_lever, sagging_depth, first, counts),
+        peak_lever_hogging=_least_lever(hogging_lever, hogging_depth, first, counts),
     )
+
+
+def _least_lever(lever: Floats, shear_depth: Floats, first: Ints, counts: Ints) -> Floats:
+    """Least lever arm of each beam, or least dv where that is greater, at all its stations."""
+    known = np.isfinite(lever)
+    least = np.minimum.reduceat(np.where(known, lever, np.inf), first)
+    depth = np.minimum.reduceat(np.where(known, shear_depth, np.inf), first)
+    return np.repeat(np.maximum(least, depth), counts)
 
 
 def _critical_rows(

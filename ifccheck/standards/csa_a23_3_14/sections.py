@@ -138,6 +138,16 @@ def _surroundings(
         hogging_area=hogging.tension_area,
         sagging_area_full=sagging.tension_area_full,
         hogging_area_full=hogging.tension_area_full,
+        sagging_lever=_lever(sagging),
+        hogging_lever=_lever(hogging),
+    )
+
+
+def _lever(face: FaceState) -> Floats:
+    """Mr over the force of the flexural tension steel; nan where there is none."""
+    steel = face.tension_force > 0.0
+    return np.where(
+        steel, face.moment_resistance / np.where(steel, face.tension_force, 1.0), np.nan
     )
 
 
