@@ -1,0 +1,123 @@
+"""From the validated TOML tables to the brief: what keys mean together."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from pathlib import Path
+from typing import cast, get_args
+
+from ifccheck.beam import SELF, Case, Nature, SourceName
+from ifccheck.brief import schema
+from ifccheck.brief.combination_entries import combination_entries
+from ifccheck.brief.entries import beam_entry, material_entry, support_entry
+from ifccheck.brief.faults import FaultError, Source
+from ifccheck.brief.load_entries import load_entry
+from ifccheck.brief.model import Basis, Brief, Defaults, ReinforcementField
+from ifccheck.brief.places import did_you_mean
+
+DEFAULT_SOURCES: tuple[SourceName, ...] = ("schedule", "bars", "sections", "properties")
+RESERVED = (SELF, *get_args(Nature))
+
+
+def to_brief(table: schema.BriefTable, path: Path, source: Source) -> Brief:
+    """Return the brief of a validated file; raise FaultError at a contradiction."""
+    cases = _cases(table.cases)
+    return Brief(
+        path=path,
+        file_name=path.name,
+        sha256="",
+        basis=Basis(**dict(table.basis)),
+        defaults=_defaults(table.defaults),
+        sources=_sources(table.reinforcement),
+        schedule=_schedule(table.reinforcement, path),
+        property_mapping=_mapping(table.reinforcement.properties),
+        cases=cases,
+        loads=tuple(load_entry(i, t, cases, source) for i, t in enumerate(table.loads)),
+        supports=tuple(support_entry(i, t, source) for i, t in enumerate(table.supports)),
+        beams=tuple(beam_entry(i, t, source) for i, t in enumerate(table.beams)),
+        materials=tuple(material_entry(i, t, source) for i, t in enumerate(table.materials)),
+        combinations=combination_entries(table.combinations, cases, source),
+    )
+
+
+def _cases(tables: Mapping[str, schema.CaseTable]) -> tuple[Case, ...]:
+    for name, table in tables.items():
+        _check_case(name, table, list(tables))
+    return tuple(
+        Case(
+            name, table.nature, table.category, table.rated, tuple(table.excludes), table.removable
+        )
+        for name, table in tables.items()
+    )
+
+
+def _check_case(name: str, table: schema.CaseTable, names: list[str]) -> None:
+    path = ("cases", name)
+    if name in RESERVED:
+        raise FaultError(path, f"'{name}' is a reserved name: name the case otherwise")
+    if name != name.strip():
+        raise FaultError(path, "the name of a case may not begin or end with a space")
+    if table.removable and table.nature != "permanent":
+        raise FaultError(
+            (*path, "removable"),
+            f"only a permanent case needs it, {table.nature} may be absent anyway",
+        )
+    for other in table.excludes:
+        if other == name or other not in names:
+            known = [known for known in names if known != name]
+            raise FaultError(
+                (*path, "excludes"), f"unknown case '{other}': {did_you_mean(other, known)}"
+            )
+
+
+def _defaults(table: schema.DefaultsTable) -> Defaults:
+    values = dict(table)
+    supports = values.pop("supports")
+    if supports is not None and "free" in supports:
+        raise FaultError(
+            ("defaults", "supports"),
+            "a free end is never a default: state it under [[supports]] for its beams",
+        )
+    return Defaults(**values, supports=None if supports is None else tuple(supports))
+
+
+def _sources(table: schema.ReinforcementTable) -> tuple[SourceName, ...]:
+    path = ("reinforcement", "sources")
+    if table.sources is None:
+        return DEFAULT_SOURCES
+    if len(set(table.sources)) != len(table.sources):
+        raise FaultError(path, "names a source twice")
+    if "schedule" in table.sources and table.schedule is None:
+        raise FaultError(path, "names the schedule, but reinforcement.schedule gives no file")
+    if table.schedule is not None and "schedule" not in table.sources:
+        raise FaultError(path, "leaves out the schedule, but reinforcement.schedule gives a file")
+    return tuple(table.sources)
+
+
+def _schedule(table: schema.ReinforcementTable, path: Path) -> Path | None:
+    if table.schedule is None:
+        return None
+    file = path.parent / table.schedule
+    if file.suffix.lower() not in (".csv", ".xlsx"):
+        raise FaultError(
+            ("reinforcement", "schedule"), f"'{table.schedule}' is neither .csv nor .xlsx"
+        )
+    if not file.is_file():
+        raise FaultError(
+            ("reinforcement", "schedule"), f"there is no file '{table.schedule}' beside the brief"
+        )
+    return file
+
+
+def _mapping(table: schema.PropertiesTable) -> Mapping[ReinforcementField, str]:
+    mapping: dict[ReinforcementField, str] = {}
+    for field, target in dict(table).items():
+        if target is None:
+            continue
+        set_name, _, property_name = target.partition(".")
+        if not set_name.strip() or not property_name.strip():
+            raise FaultError(
+                ("reinforcement", "properties", field), f"'{target}' must be written Set.Property"
+            )
+        mapping[cast(ReinforcementField, field)] = target
+    return mapping

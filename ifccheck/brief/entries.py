@@ -1,0 +1,93 @@
+"""Entries that name beams: their selections, and what they state of supports and beams."""
+
+from __future__ import annotations
+
+from typing import TypedDict
+
+from ifccheck.brief import schema
+from ifccheck.brief.faults import FaultError, Source
+from ifccheck.brief.model import BeamEntry, MaterialEntry, Selection, SupportEntry
+from ifccheck.brief.places import Path, shown
+from ifccheck.brief.supports import cannot_stand
+
+
+class Head(TypedDict):
+    """What every entry begins with."""
+
+    place: str
+    line: int | None
+    selection: Selection
+    optional: bool
+
+
+def head(path: Path, table: schema.SelectingTable, source: Source) -> Head:
+    """Place, line and selection of an entry."""
+    return Head(
+        place=shown(path),
+        line=source.line(path),
+        selection=_selection(path, table),
+        optional=table.optional,
+    )
+
+
+def _selection(path: Path, table: schema.SelectingTable) -> Selection:
+    if (table.beams is None) == (table.where is None):
+        both = "both beams and where" if table.beams is not None else "neither beams nor where"
+        raise FaultError(path, f"has {both}: exactly one of them says which beams are meant")
+    if table.where is not None:
+        if not table.where.strip():
+            raise FaultError((*path, "where"), "is empty")
+        return Selection(where=table.where)
+    for mark in table.beams or ():
+        if not mark.strip():
+            raise FaultError((*path, "beams"), "holds an empty mark")
+    return Selection(beams=tuple(table.beams or ()))
+
+
+def _states_something(path: Path, table: schema.SelectingTable, keys: tuple[str, ...]) -> None:
+    if all(getattr(table, key) is None for key in keys):
+        raise FaultError(path, f"states nothing: give at least one of {', '.join(keys)}")
+
+
+def support_entry(index: int, table: schema.SupportTable, source: Source) -> SupportEntry:
+    """An entry of ``[[supports]]``."""
+    path: Path = ("supports", index)
+    _states_something(path, table, ("start", "end", "bearing"))
+    if table.start and table.end and (reason := cannot_stand(table.start, table.end)):
+        raise FaultError(path, f"{reason}: one end must be fixed, or neither free")
+    for kind, width in zip((table.start, table.end), table.bearing or (0.0, 0.0), strict=True):
+        if kind == "free" and width > 0.0:
+            raise FaultError((*path, "bearing"), "gives a free end a bearing: write 0 mm for it")
+    return SupportEntry(
+        **head(path, table, source), start=table.start, end=table.end, bearing=table.bearing
+    )
+
+
+def beam_entry(index: int, table: schema.BeamTable, source: Source) -> BeamEntry:
+    """An entry of ``[[beams]]``."""
+    path: Path = ("beams", index)
+    keys = ("span", "unloaded", "loads_complete", "torsion")
+    _states_something(path, table, keys)
+    return BeamEntry(
+        **head(path, table, source),
+        span=table.span,
+        unloaded=table.unloaded,
+        loads_complete=table.loads_complete,
+        torsion=table.torsion,
+    )
+
+
+def material_entry(index: int, table: schema.MaterialTable, source: Source) -> MaterialEntry:
+    """An entry of ``[[materials]]``."""
+    path: Path = ("materials", index)
+    keys = (*schema.MaterialsTable.model_fields, "density")
+    _states_something(path, table, keys)
+    return MaterialEntry(
+        **head(path, table, source),
+        concrete_strength=table.concrete_strength,
+        bar_yield=table.bar_yield,
+        stirrup_yield=table.stirrup_yield,
+        cover=table.cover,
+        density=table.density,
+        aggregate_size=table.aggregate_size,
+    )

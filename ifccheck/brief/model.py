@@ -1,0 +1,216 @@
+"""The brief as frozen data, in N, mm, MPa; selections stay text until they are resolved."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator, Mapping
+from dataclasses import dataclass
+from pathlib import Path
+from typing import Literal
+
+from ifccheck.beam import (
+    BarGroup,
+    Case,
+    CombinationKind,
+    Face,
+    LoadKind,
+    SourceName,
+    StirrupGroup,
+    SupportKind,
+)
+
+ReinforcementField = Literal[
+    "top", "bottom", "side", "stirrups", "cover", "bar_yield", "stirrup_yield"
+]
+
+
+@dataclass(frozen=True, slots=True)
+class Selection:
+    """Which beams an entry speaks of: marks, or an element query; exactly one is given."""
+
+    beams: tuple[str, ...] | None = None
+    where: str | None = None
+
+    def __str__(self) -> str:
+        if self.where is not None:
+            return f"where = {self.where!r}"
+        return f"beams = {', '.join(self.beams or ())}"
+
+
+@dataclass(frozen=True, slots=True)
+class Position:
+    """A place along a beam: [mm] from its start, or a share of its length."""
+
+    value: float
+    relative: bool
+    text: str
+    """As the engineer wrote it."""
+
+    def on(self, length: float) -> float:
+        """Distance from the start [mm] on a beam of a length."""
+        return self.value * length if self.relative else self.value
+
+
+@dataclass(frozen=True, slots=True)
+class LoadEntry:
+    """One entry of ``[[loads]]``; an area load is already a line load."""
+
+    place: str
+    """ "loads[3]", counted from 1 as a reader counts"""
+    line: int | None
+    """Line of the brief where the entry begins"""
+    selection: Selection
+    optional: bool
+    """True where the entry may reach no beam"""
+    case: str
+    kind: LoadKind
+    values: tuple[float, float]
+    """N/mm at ``start`` and ``end``, or N or N*mm twice."""
+    start: Position | None
+    """Place of a point load or moment; start of a line, None for the whole beam."""
+    end: Position | None
+    anchor: str | None
+    """Member at the end of the beam from which positions are measured; None: the start."""
+    face: Face
+    projected: bool
+    eccentricity: float
+    """Offset from the web's middle [mm]; other than 0 it asks for torsion."""
+    text: str
+    """ "60 kN at 2.1 m" """
+
+
+@dataclass(frozen=True, slots=True)
+class SupportEntry:
+    """One entry of ``[[supports]]``; None for what it does not speak of."""
+
+    place: str
+    line: int | None
+    selection: Selection
+    optional: bool
+    start: SupportKind | None
+    end: SupportKind | None
+    bearing: tuple[float, float] | None
+
+
+@dataclass(frozen=True, slots=True)
+class BeamEntry:
+    """One entry of ``[[beams]]``: statements about single beams; None where it is silent."""
+
+    place: str
+    line: int | None
+    selection: Selection
+    optional: bool
+    span: float | None
+    unloaded: bool | None
+    loads_complete: bool | None
+    torsion: bool | None
+    """True where loads act beside the web or the beam must twist to stand."""
+
+
+@dataclass(frozen=True, slots=True)
+class MaterialEntry:
+    """One entry of ``[[materials]]``; None where it is silent."""
+
+    place: str
+    line: int | None
+    selection: Selection
+    optional: bool
+    concrete_strength: float | None
+    bar_yield: float | None
+    stirrup_yield: float | None
+    cover: float | None
+    density: float | None
+    """[kg/m3]"""
+    aggregate_size: float | None
+
+
+Entry = LoadEntry | SupportEntry | BeamEntry | MaterialEntry
+"""What has a selection: ``place``, ``line``, ``selection`` and ``optional``."""
+
+
+@dataclass(frozen=True, slots=True)
+class CombinationEntry:
+    """One entry of ``[[combinations]]``: factors by case or nature as the engineer gave them,
+    (unfavourable, favourable), the second None where only one was given."""
+
+    place: str
+    line: int | None
+    name: str
+    kind: CombinationKind
+    factors: Mapping[str, tuple[float, float | None]]
+
+
+@dataclass(frozen=True, slots=True)
+class Basis:
+    """What the rating rests on."""
+
+    standard: str
+    shear_method: str | None
+    concrete_unit_weight: float
+    """[N/mm3]"""
+
+
+@dataclass(frozen=True, slots=True)
+class Defaults:
+    """Used only where the model is silent; None where the brief gives none."""
+
+    concrete_strength: float | None = None
+    bar_yield: float | None = None
+    stirrup_yield: float | None = None
+    cover: float | None = None
+    aggregate_size: float | None = None
+    supports: tuple[SupportKind, SupportKind] | None = None
+
+
+@dataclass(frozen=True, slots=True)
+class Brief:
+    """The engineer's brief, validated."""
+
+    path: Path
+    file_name: str
+    sha256: str
+    """Of the brief's bytes and, where it names one, of the schedule's."""
+    basis: Basis
+    defaults: Defaults
+    sources: tuple[SourceName, ...]
+    schedule: Path | None
+    property_mapping: Mapping[ReinforcementField, str]
+    """Field to "Set.Property"."""
+    cases: tuple[Case, ...]
+    """As declared, without ``self``."""
+    loads: tuple[LoadEntry, ...] = ()
+    supports: tuple[SupportEntry, ...] = ()
+    beams: tuple[BeamEntry, ...] = ()
+    materials: tuple[MaterialEntry, ...] = ()
+    combinations: tuple[CombinationEntry, ...] = ()
+
+    def entries(self) -> Iterator[Entry]:
+        """Every entry with a selection, in the order of the brief's tables."""
+        yield from self.loads
+        yield from self.supports
+        yield from self.beams
+        yield from self.materials
+
+    def where(self, entry: Entry, key: str = "") -> str:
+        """File, place and line of an entry, for an error."""
+        place = f"{entry.place}.{key}" if key else entry.place
+        line = "" if entry.line is None else f" (line {entry.line})"
+        return f"{self.file_name}: {place}{line}"
+
+
+@dataclass(frozen=True, slots=True)
+class ScheduleRow:
+    """One row of the beam schedule; None for an empty cell, an empty tuple for "none"."""
+
+    place: str
+    """ "beam_schedule.csv row 7" """
+    selection: Selection
+    start: Position | None
+    end: Position | None
+    top: tuple[BarGroup, ...] | None
+    bottom: tuple[BarGroup, ...] | None
+    side: tuple[BarGroup, ...] | None
+    stirrups: StirrupGroup | None
+    no_stirrups: bool
+    cover: float | None
+    bar_yield: float | None
+    stirrup_yield: float | None

@@ -1,0 +1,53 @@
+"""What the run must find the beams of, and the check that no mark or query misses them all."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator, Mapping, Sequence
+
+from ifccheck.brief.model import Brief, Entry, ScheduleRow, Selection
+from ifccheck.errors import BriefError
+
+Found = Mapping[str, Sequence[str]]
+"""Keys of the beams that each single mark or query reaches, by its place."""
+
+
+def selections(brief: Brief, rows: Sequence[ScheduleRow] = ()) -> dict[str, Selection]:
+    """Return every query and every single mark of the brief and its schedule, by its place.
+
+    Marks are looked for one by one, so that a mistyped one among good ones is not lost.
+    """
+    return {place: part for entry in (*brief.entries(), *rows) for place, part in parts_of(entry)}
+
+
+def parts_of(entry: Entry | ScheduleRow) -> Iterator[tuple[str, Selection]]:
+    """Each query or mark of an entry or row with its place: ``loads[3].beams[2]``."""
+    if entry.selection.where is not None:
+        yield f"{entry.place}.where", entry.selection
+    for index, mark in enumerate(entry.selection.beams or (), 1):
+        yield f"{entry.place}.beams[{index}]", Selection(beams=(mark,))
+
+
+def join(brief: Brief, rows: Sequence[ScheduleRow], found: Found) -> dict[str, tuple[str, ...]]:
+    """Return the keys of the beams that each entry and row reaches, each beam once."""
+    return {
+        entry.place: tuple(
+            dict.fromkeys(key for place, _ in parts_of(entry) for key in found[place])
+        )
+        for entry in (*brief.entries(), *rows)
+    }
+
+
+def check_reached(brief: Brief, found: Sequence[Found]) -> None:
+    """Raise BriefError for a mark or query that reaches no beam in any model of the run.
+
+    An entry with ``optional = true`` may reach none.
+    """
+    for entry in brief.entries():
+        for place, part in parts_of(entry):
+            if not entry.optional and not any(of_model[place] for of_model in found):
+                key = "where" if part.where is not None else "beams"
+                said = part.where if part.where is not None else (part.beams or ("",))[0]
+                raise BriefError(
+                    f"{brief.where(entry, key)}: '{said}' reaches no beam: correct it, or write"
+                    " optional = true"
+                )

@@ -1,0 +1,132 @@
+"""How the ends of every beam stand, by the brief's entries and its default."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping, Sequence
+from typing import Literal
+
+from ifccheck.beam import Beam, Contact, Reason, Remark, Support, SupportKind
+from ifccheck.brief.merging import Matches, Said, merge
+from ifccheck.brief.model import Brief, SupportEntry
+from ifccheck.errors import BriefError
+from ifccheck.units import show
+
+End = Literal["start", "end"]
+Supports = tuple[Support, Support]
+
+STANDING_PAIRS = frozenset(
+    {
+        ("pinned", "pinned"),
+        ("pinned", "fixed"),
+        ("fixed", "pinned"),
+        ("fixed", "fixed"),
+        ("fixed", "free"),
+        ("free", "fixed"),
+    }
+)
+"""Kinds of the start and the end with which a single beam can stand."""
+
+
+def cannot_stand(start: SupportKind, end: SupportKind) -> str | None:
+    """Say why a single beam with such ends falls down; None where it stands."""
+    if (start, end) in STANDING_PAIRS:
+        return None
+    return f"a beam with a {start} start and a {end} end cannot stand"
+
+
+def resolve_supports(
+    brief: Brief,
+    matches: Matches,
+    beams: Mapping[str, Beam],
+    contacts: Mapping[str, Sequence[Contact]],
+) -> tuple[dict[str, Supports | Reason], tuple[Remark, ...]]:
+    """Return the supports of every beam, or why they are unknown, and the remarks.
+
+    The brief's default holds at an end that touches another member which does not merely
+    stand on it. An end that touches nothing needs its own entry; both ends do where something
+    touches the beam from below between them. Raises BriefError for a beam that cannot stand.
+    """
+    stated, overruled = merge(brief.supports, matches, _say)
+    supports: dict[str, Supports | Reason] = {}
+    remarks: list[Remark] = []
+    for key, beam in beams.items():
+        said, touching = stated.get(key, {}), contacts.get(key, ())
+        supports[key] = _supports(brief, beam, said, touching)
+        remarks += (*overruled.get(key, ()), *_remarks(key, supports[key], said))
+    return supports, tuple(remarks)
+
+
+def _say(entry: SupportEntry) -> dict[str, Said]:
+    said = {
+        end: Said(kind, kind, entry.place)
+        for end, kind in (("start", entry.start), ("end", entry.end))
+        if kind is not None
+    }
+    for end, width in zip(("start", "end"), entry.bearing or (), strict=False):
+        said[f"{end}_bearing"] = Said(width, show(width, "dimension"), entry.place)
+    return said
+
+
+def _supports(
+    brief: Brief, beam: Beam, said: Mapping[str, Said], contacts: Sequence[Contact]
+) -> Supports | Reason:
+    below = [c for c in contacts if c.place == "between" and c.side == "below"]
+    if below and not ("start" in said and "end" in said):
+        return _touched_between(below[0])
+    start = _end(brief, "start", said, contacts)
+    end = _end(brief, "end", said, contacts)
+    if isinstance(start, Reason):
+        return start
+    if isinstance(end, Reason):
+        return end
+    if reason := cannot_stand(start.kind, end.kind):
+        place = next(said[name].place for name in ("start", "end") if name in said)
+        raise BriefError(f"{_told_at(brief, place)}: beam {beam.mark}: {reason}")
+    return start, end
+
+
+def _touched_between(contact: Contact) -> Reason:
+    return Reason(
+        f"supports unknown: {contact.other} touches it from below between its ends, at"
+        f" {show(contact.start, 'length')}; state both ends under [[supports]]"
+    )
+
+
+def _told_at(brief: Brief, place: str) -> str:
+    return next(brief.where(entry) for entry in brief.supports if entry.place == place)
+
+
+def _end(
+    brief: Brief, end: End, said: Mapping[str, Said], contacts: Sequence[Contact]
+) -> Support | Reason:
+    bearing = said[f"{end}_bearing"].value if f"{end}_bearing" in said else 0.0
+    if end in said:
+        kind, source = said[end].value, f"brief, {said[end].place}"
+        return Support(kind, 0.0 if kind == "free" else bearing, source)
+    if not any(contact.place == end and contact.side != "above" for contact in contacts):
+        return Reason(
+            f"supports unknown: its {end} touches no member that could carry it, and no entry"
+            " of [[supports]] speaks of it"
+        )
+    if brief.defaults.supports is None:
+        return Reason(
+            f"supports unknown: neither [[supports]] nor defaults.supports speaks of its {end}"
+        )
+    return Support(brief.defaults.supports[0 if end == "start" else 1], bearing, DEFAULT)
+
+
+DEFAULT = "brief, defaults.supports"
+
+
+def _remarks(key: str, supports: Supports | Reason, said: Mapping[str, Said]) -> list[Remark]:
+    if isinstance(supports, Reason):
+        return []
+    remarks = []
+    for end, support in zip(("start", "end"), supports, strict=True):
+        if support.source == DEFAULT:
+            text = f"{end} taken as {support.kind}, the brief's default"
+            remarks.append(Remark(key, "supports", text, "assumption"))
+        elif support.kind == "fixed":
+            text = f"{end} is fixed because {said[end].place} of the brief says so"
+            remarks.append(Remark(key, "supports", text, "note"))
+    return remarks
