@@ -262,9 +262,9 @@ def _read_sections(words: _Words, data: bytes) -> tuple[tuple[str, ...], tuple[S
         if word == END_WORD and not ended:
             ended = True
             continue
-        name = _section_name(word)
-        if ended and name != "SIGNATURE":
+        if ended and not word.startswith(b"SIGNATURE"):
             raise StepError(f"goes on after its end with {_shown(word)}; {EXPORT_AGAIN}")
+        name = _section_name(word)
         if name == "SIGNATURE" and word.endswith(b"ENDSEC"):
             sections.append(Section(name, start, start, stop, stop))
             continue
