@@ -8,7 +8,7 @@ import numpy as np
 
 from ifccheck.mechanics.arrays import Bools, Floats, Ints
 
-REACH = 1e-6
+REACH = 1e-5
 """Places nearer to one another than this are one [mm]."""
 
 

@@ -7,11 +7,11 @@ from dataclasses import dataclass
 import numpy as np
 
 from ifccheck.mechanics.arrays import Bools, Demand, Floats
-from ifccheck.standards.contract import CalculationLine, Check, LimitState
+from ifccheck.standards.contract import CalculationLine, Check, LimitState, Note
 from ifccheck.standards.csa_a23_3_14.materials import GREATEST_YIELD
 from ifccheck.standards.csa_a23_3_14.sections import Prepared
 from ifccheck.standards.csa_a23_3_14.shear_lines import given
-from ifccheck.standards.csa_a23_3_14.stirrups import minimum_stirrup_area
+from ifccheck.standards.csa_a23_3_14.stirrups import GREATEST_SPACING, minimum_stirrup_area
 from ifccheck.standards.csa_a23_3_14.tension_face import broadcast
 
 DEEP = 750.0
@@ -79,6 +79,31 @@ def _details(prepared: Prepared) -> MinimumStirrupDetails:
         provided=provided,
         needed=prepared.depth > DEEP,
         has_stirrups=~none,
+    )
+
+
+def idle_stirrups(prepared: Prepared) -> tuple[Note, ...]:
+    """Where there are stirrups that add nothing to the shear resistance, whatever the shear.
+
+    References
+    ----------
+    CSA A23.3-14, 11.2.8.2 and 11.3.8.1
+    """
+    least_depth = np.minimum(prepared.sagging.shear_depth, prepared.hogging.shear_depth)
+    present = (prepared.stirrup_area > 0.0) & prepared.inside
+    details = _details(prepared)
+    wide = prepared.stirrup_spacing > np.minimum(0.7 * least_depth, GREATEST_SPACING)
+    return (
+        Note(
+            "11.2.8.2",
+            "stirrups below the minimum area add nothing to the shear resistance",
+            present & (details.provided < details.required),
+        ),
+        Note(
+            "11.3.8.1",
+            "stirrups wider apart than the limit add nothing to the shear resistance",
+            present & wide,
+        ),
     )
 
 
