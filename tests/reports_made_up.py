@@ -38,6 +38,7 @@ from ifccheck.beam import (
 from ifccheck.publish.report import Assumption, CaseSummary, Report
 from ifccheck.rating import BasisItem, LimitStateRating, Rating, SafeLoad
 from ifccheck.sheet import Diagram, Sheet, SheetCheck, SheetLine
+from ifccheck.units import show_ratio
 
 BAY, SPAN_Y = 6000.0, 7500.0
 STOREYS = ("Level 1", "Level 2", "Roof")
@@ -82,8 +83,8 @@ def _beam(i: int, mark: str, storey: int, axis: Axis | None, outline: Outline) -
         step_id=1000 + i,
         model="press-hall",
         ifc_class="IfcBeam",
-        name=f"Beam {outline.name}",
-        tag=mark,
+        name=mark,
+        tag=f"{300000 + i}",
         type_name=f"RC {outline.name}",
         storey=STOREYS[storey],
         axis=axis,
@@ -208,14 +209,17 @@ def _basis(beam: Beam) -> tuple[BasisItem, ...]:
     return (
         BasisItem("ConcreteStrength", "concrete strength f'c", 30.0, "pressure",
                   "material name 'Concrete C30/37'"),
-        BasisItem("BarYield", "yield of bars fy", 400.0, "pressure", "defaults of the brief", True),
-        BasisItem("Cover", "clear cover to stirrups", 40.0, "length", "defaults of the brief", True),
+        BasisItem("BarYield", "yield of bars fy", 400.0, "pressure", "defaults of the brief",
+                  True),
+        BasisItem("Cover", "clear cover to stirrups", 40.0, "length", "defaults of the brief",
+                  True),
         BasisItem("EffectiveDepthSagging", "effective depth, sagging", 536.0, "length",
                   "bars: IfcReinforcingBar #4410, #4411"),
         BasisItem("AreaSagging", "tension steel, sagging", 1500.0, "area", "bars: 3-25M"),
         BasisItem("Span", "span between bearings", beam.length, "length",
                   "axis of the body, bearing 0 mm"),
-        BasisItem("Supports", "supports", "pinned, pinned", "label", "defaults of the brief", True),
+        BasisItem("Supports", "supports", "pinned, pinned", "label", "defaults of the brief",
+                  True),
     )  # fmt: skip
 
 
@@ -263,8 +267,8 @@ def made_up_sheet(beam: Beam, rating: Rating) -> Sheet:
     if beam.axis is None:
         return Sheet(beam, rating, None, (), (), (), None, math.nan, (), ())
     length = beam.length
-    span = Span(0.0, length, Support("pinned", 300.0, "touches a column"),
-                Support("fixed" if beam.mark.startswith("W") else "pinned", 300.0, "brief"))  # fmt: skip
+    end = Support("fixed" if beam.mark.startswith("W") else "pinned", 300.0, "brief")
+    span = Span(0.0, length, Support("pinned", 300.0, "touches a column"), end)
     blocked = any(reason.blocking for reason in rating.reasons)
     return Sheet(
         beam=beam,
@@ -340,7 +344,10 @@ def _check(state: LimitStateRating) -> SheetCheck:
         place=f"at x = {state.position / 1000.0:.2f} m, combination {state.combination}",
         lines=_lines(demand, resistance, unit),
         utilisation=state.utilisation,
-        outcome=f"{state.utilisation:.4f}: demand {demand:.1f} {unit}, resistance {resistance:.1f} {unit}",
+        outcome=(
+            f"{show_ratio(state.utilisation)}: demand {demand:.1f} {unit},"
+            f" resistance {resistance:.1f} {unit}"
+        ),
     )
 
 
@@ -456,8 +463,8 @@ def hostile_report() -> Report:
     spoilt = [
         replace(
             beam,
-            tag=HOSTILE[i % len(HOSTILE)],
-            name=HOSTILE[(i + 1) % len(HOSTILE)],
+            name=HOSTILE[i % len(HOSTILE)],
+            tag=HOSTILE[(i + 1) % len(HOSTILE)],
             storey=HOSTILE[i % 3],
             type_name=HOSTILE[(i + 2) % len(HOSTILE)],
             material=HOSTILE[(i + 3) % len(HOSTILE)],

@@ -3,9 +3,12 @@
 from __future__ import annotations
 
 import math
+import re
 
 from ifccheck.units import ShownKind, show
 
+_WHOLE: tuple[ShownKind, ...] = ("dimension", "stress", "area")
+_NO_DECIMALS = re.compile(r"\.0+(?= )")
 SHORTEST_IN_METRES = 2000.0
 """Shorter lengths of a basis, such as a cover, read better in mm."""
 
@@ -27,8 +30,13 @@ UNIT_KINDS: dict[str, ShownKind] = {
 
 
 def quantity_words(value: float, kind: ShownKind) -> str:
-    """Return a quantity with its unit, with a raised dot in products."""
-    return show(value, kind).replace("*", "·")
+    """Return a quantity with its unit, with a raised dot in products.
+
+    >>> quantity_words(40.0, "dimension"), quantity_words(1.5e8, "moment")
+    ('40 mm', '150 kN·m')
+    """
+    words = show(value, kind).replace("*", "·")
+    return _NO_DECIMALS.sub("", words) if kind in _WHOLE and value == round(value) else words
 
 
 def number_and_unit(value: float, unit: str) -> tuple[str, str]:

@@ -40,6 +40,15 @@ def plain(text: str) -> str:
     return _UNSHOWABLE.sub("\ufffd", _BLANKS.sub(" ", text))
 
 
+def printable(text: str) -> str:
+    """Return a text on one line without anything that would steer a terminal.
+
+    >>> printable("B-1\\n\\x1b[31mred")
+    'B-1 [31mred'
+    """
+    return _UNSHOWABLE.sub("", _BLANKS.sub(" ", text))
+
+
 def joined(words: Iterable[str]) -> str:
     """Return words as a phrase.
 

@@ -1,0 +1,223 @@
+"""The whole answer as data, schema version 1.0.
+
+Everything is in N, mm, MPa and N*mm, as the member ``units`` states; ratios have no unit. A
+figure that is not finite is null; the member beside it with the same name and ``_state`` says
+why: utilisation ``known``, ``not known`` or ``no resistance`` (something is demanded of
+nothing); factor ``rated``, ``not limited`` or ``not rated``.
+
+    schema, schema_version, program, units
+    standard      id, title, edition, actions, shear_method
+    brief         file, sha256
+    model         file, schema, sha256 (of the bytes without any results)
+    counts        adequate, falls_short, not_rated, out_of_scope
+    rated_cases   case, nature, factor, factor_state, governing_beam, text, beams_reached,
+                  unrated_in_path
+    combinations  name, kind, factors: case -> [unfavourable, favourable]
+    beams         key, global_id, ordinal, mark, name, tag, type, storey, material, length,
+                  span (start, end, supports), verdict, utilisation, governing (name of a limit
+                  state), limit_states, rated_cases, reasons, remarks, basis, checked,
+                  not_checked
+    out_of_scope  global_id, name, storey, reason, evidence
+    assumptions   text, beams (empty: the whole run)
+    remarks       beam, stage, kind, text
+
+Beams are named by ``key``: the GlobalId, with ~2, ~3 ... where the model repeats it. Members
+are only added within a major version.
+"""
+
+from __future__ import annotations
+
+import json
+import math
+from typing import Any
+
+from ifccheck.beam import Beam, Combination, OutOfScope, Remark, Span, Support
+from ifccheck.publish.report import CaseSummary, Report
+from ifccheck.rating import BasisItem, LimitStateRating, Rating, SafeLoad
+from ifccheck.tables import factor_state, utilisation_state
+
+SCHEMA_VERSION = "1.0"
+UNITS = {"length": "mm", "force": "N", "moment": "N*mm", "line_force": "N/mm",
+         "pressure": "MPa", "area": "mm2", "real": "1"}  # fmt: skip
+
+Data = dict[str, Any]
+
+
+def ratings_json(report: Report) -> str:
+    """Return the whole answer as JSON; the same report gives the same text."""
+    return json.dumps(_report(report), indent=1, allow_nan=False) + "\n"
+
+
+def _report(report: Report) -> Data:
+    counts = report.counts
+    return {
+        "schema": "ifccheck-rating",
+        "schema_version": SCHEMA_VERSION,
+        "program": {"name": "ifccheck", "version": report.version},
+        "units": UNITS,
+        "standard": {
+            "id": report.standard_id,
+            "title": report.standard_title,
+            "edition": report.standard_edition,
+            "actions": report.actions,
+            "shear_method": report.shear_method,
+        },
+        "brief": {"file": report.brief_name, "sha256": report.brief_sha256},
+        "model": {
+            "file": report.model.file_name,
+            "schema": report.model.schema,
+            "sha256": report.model.sha256,
+        },
+        "counts": {
+            "adequate": counts.adequate,
+            "falls_short": counts.falls_short,
+            "not_rated": counts.not_rated,
+            "out_of_scope": counts.out_of_scope,
+        },
+        "rated_cases": [_case(case) for case in report.cases],
+        "combinations": [_combination(combination) for combination in report.combinations],
+        "beams": [_beam(beam, report) for beam in report.model.beams],
+        "out_of_scope": [_out_of_scope(member) for member in report.model.out_of_scope],
+        "assumptions": [{"text": a.text, "beams": list(a.beams)} for a in report.assumptions],
+        "remarks": [_remark(remark) for remark in report.remarks],
+    }
+
+
+def _finite(value: float) -> float | None:
+    return value if math.isfinite(value) else None
+
+
+def _used(utilisation: float) -> Data:
+    return {
+        "utilisation": _finite(utilisation),
+        "utilisation_state": utilisation_state(utilisation),
+    }
+
+
+def _factor(factor: float) -> Data:
+    return {"factor": _finite(factor), "factor_state": factor_state(factor)}
+
+
+def _case(case: CaseSummary) -> Data:
+    return {
+        "case": case.case,
+        "nature": case.nature,
+        **_factor(case.factor),
+        "governing_beam": case.governing_beam,
+        "text": case.text,
+        "beams_reached": case.beams_reached,
+        "unrated_in_path": list(case.unrated_in_path),
+    }
+
+
+def _combination(combination: Combination) -> Data:
+    factors = {case: list(pair) for case, pair in combination.factors.items()}
+    return {"name": combination.name, "kind": combination.kind, "factors": factors}
+
+
+def _beam(beam: Beam, report: Report) -> Data:
+    rating = report.ratings[beam.key]
+    span = report.spans.get(beam.key)
+    return {
+        "key": beam.key,
+        "global_id": beam.guid,
+        "ordinal": beam.ordinal,
+        "mark": beam.mark,
+        "name": beam.name,
+        "tag": beam.tag,
+        "type": beam.type_name,
+        "storey": beam.storey,
+        "material": beam.material,
+        "length": beam.length if beam.axis else None,
+        "span": _span(span) if span else None,
+        **_rating(rating),
+    }
+
+
+def _span(span: Span) -> Data:
+    return {
+        "start": span.start,
+        "end": span.end,
+        "start_support": _support(span.start_support),
+        "end_support": _support(span.end_support),
+    }
+
+
+def _support(support: Support) -> Data:
+    return {"kind": support.kind, "bearing": support.bearing, "source": support.source}
+
+
+def _rating(rating: Rating) -> Data:
+    return {
+        "verdict": str(rating.verdict),
+        **_used(rating.utilisation),
+        "governing": rating.governing.name if rating.governing else None,
+        "limit_states": [_limit_state(state) for state in rating.limit_states],
+        "rated_cases": [_safe_load(safe) for safe in rating.safe_loads],
+        "reasons": [reason.text for reason in rating.reasons],
+        "remarks": [_remark(remark) for remark in rating.remarks],
+        "basis": [_basis(item) for item in rating.basis],
+        "checked": list(rating.checked),
+        "not_checked": list(rating.not_checked),
+    }
+
+
+def _limit_state(state: LimitStateRating) -> Data:
+    return {
+        "name": state.name,
+        "title": state.title,
+        **_used(state.utilisation),
+        "position": _finite(state.position),
+        "combination": state.combination,
+        "demand": _finite(state.demand),
+        "resistance": _finite(state.resistance),
+        "unit": state.demand_unit,
+        "clause": state.clause,
+        "counted": state.counted,
+        "why_not": state.why_not,
+    }
+
+
+def _safe_load(safe: SafeLoad) -> Data:
+    return {
+        "case": safe.case,
+        **_factor(safe.factor),
+        "assigned": safe.assigned,
+        "safe_load": safe.text,
+        "single_load": _finite(safe.single_value),
+        "single_unit": {"point": "N", "line": "N/mm"}.get(safe.single_kind),
+        "limited_by": safe.governing or None,
+        "position": _finite(safe.position),
+        "combination": safe.combination,
+    }
+
+
+def _basis(item: BasisItem) -> Data:
+    value = _finite(item.value) if isinstance(item.value, float) else item.value
+    return {
+        "name": item.name,
+        "label": item.label,
+        "value": value,
+        "measure": item.measure,
+        "source": item.source,
+        "assumed": item.assumed,
+    }
+
+
+def _out_of_scope(member: OutOfScope) -> Data:
+    return {
+        "global_id": member.guid,
+        "name": member.name,
+        "storey": member.storey,
+        "reason": member.reason,
+        "evidence": member.evidence,
+    }
+
+
+def _remark(remark: Remark) -> Data:
+    return {
+        "beam": remark.beam,
+        "stage": remark.stage,
+        "kind": remark.kind,
+        "text": remark.text,
+    }

@@ -1,0 +1,230 @@
+"""The results as pandas tables: the only maker of DataFrames.
+
+Lengths are in m and stresses in MPa, demand and resistance in kN or kN*m, as the names of the
+columns or the column beside them tell. A utilisation is inf where something is demanded of
+nothing, a rating factor inf where the case never governs; nan is not known.
+"""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Iterable, Mapping, Sequence
+from typing import TYPE_CHECKING
+
+from ifccheck.beam import Beam, OutOfScope, Span, Verdict
+from ifccheck.rating import LimitStateRating, Rating, SafeLoad
+
+if TYPE_CHECKING:
+    import pandas as pd
+
+Cell = str | float | bool | None
+
+_FOR_PEOPLE = {"N*mm": (1e6, "kN*m"), "N": (1e3, "kN"), "N/mm": (1.0, "kN/m")}
+_SINGLE_UNITS = {"point": (1e3, "kN"), "line": (1.0, "kN/m")}
+
+_NO_LOAD = SafeLoad("", math.nan, "", math.nan, "", "", "", math.nan, "")
+
+
+def ratings_frame(
+    beams: Sequence[Beam],
+    ratings: Mapping[str, Rating],
+    spans: Mapping[str, Span] | None = None,
+    cases: Sequence[str] = (),
+) -> pd.DataFrame:
+    """Return one row per beam: the beam, its verdict, what governs, and every rated case.
+
+    ``cases`` names rated cases that have columns even where they reach no beam.
+    """
+    states = _names(state.name for r in ratings.values() for state in r.limit_states)
+    named = _names((*cases, *(safe.case for r in ratings.values() for safe in r.safe_loads)))
+    return _frame(
+        {
+            **_beam_cells(beam, (spans or {}).get(beam.key)),
+            **_rating_cells(ratings[beam.key]),
+            **_state_cells(ratings[beam.key], states),
+            **_case_cells(ratings[beam.key], named),
+        }
+        for beam in beams
+    )
+
+
+def limit_states_frame(beams: Sequence[Beam], ratings: Mapping[str, Rating]) -> pd.DataFrame:
+    """Return one row per beam and limit state."""
+    return _frame(
+        {"mark": beam.mark, "key": beam.key, **_limit_state_cells(state)}
+        for beam in beams
+        for state in ratings[beam.key].limit_states
+    )
+
+
+def safe_loads_frame(beams: Sequence[Beam], ratings: Mapping[str, Rating]) -> pd.DataFrame:
+    """Return one row per beam and rated case that reaches it."""
+    return _frame(
+        {"mark": beam.mark, "key": beam.key, "case": safe.case, **_safe_load_cells(safe)}
+        for beam in beams
+        for safe in ratings[beam.key].safe_loads
+    )
+
+
+def basis_frame(beams: Sequence[Beam], ratings: Mapping[str, Rating]) -> pd.DataFrame:
+    """Return one row per beam and thing that its rating rests on, in N, mm, MPa."""
+    return _frame(
+        {
+            "mark": beam.mark,
+            "key": beam.key,
+            "name": item.name,
+            "label": item.label,
+            "value": item.value,
+            "measure": item.measure,
+            "source": item.source,
+            "assumed": item.assumed,
+        }
+        for beam in beams
+        for item in ratings[beam.key].basis
+    )
+
+
+def remarks_frame(beams: Sequence[Beam], ratings: Mapping[str, Rating]) -> pd.DataFrame:
+    """Return one row per beam and remark or reason for which it is not rated."""
+    return _frame(
+        {"mark": beam.mark, "key": beam.key, "kind": kind, "stage": stage, "text": text}
+        for beam in beams
+        for kind, stage, text in (
+            *(("reason", "", reason.text) for reason in ratings[beam.key].reasons),
+            *((remark.kind, remark.stage, remark.text) for remark in ratings[beam.key].remarks),
+        )
+    )
+
+
+def out_of_scope_frame(members: Iterable[OutOfScope]) -> pd.DataFrame:
+    """Return one row per beam that was left out, with the evidence."""
+    return _frame(
+        {
+            "name": member.name,
+            "global_id": member.guid,
+            "storey": member.storey,
+            "reason": member.reason,
+            "evidence": member.evidence,
+        }
+        for member in members
+    )
+
+
+def _frame(rows: Iterable[Mapping[str, Cell]]) -> pd.DataFrame:
+    import pandas as pd
+
+    return pd.DataFrame(list(rows))
+
+
+def _names(names: Iterable[str]) -> list[str]:
+    """Names in the order in which they first come, each once."""
+    return list(dict.fromkeys(names))
+
+
+def _beam_cells(beam: Beam, span: Span | None) -> dict[str, Cell]:
+    strength = beam.concrete_strength
+    return {
+        "model": beam.model,
+        "mark": beam.mark,
+        "name": beam.name,
+        "tag": beam.tag,
+        "global_id": beam.guid,
+        "key": beam.key,
+        "storey": beam.storey,
+        "type": beam.type_name,
+        "section": beam.runs[0].outline.name if beam.runs else "",
+        "material": beam.material,
+        "concrete_strength_MPa": strength.value if strength else math.nan,
+        "length_m": _metres(beam.length) if beam.axis else math.nan,
+        "span_m": _metres(span.end - span.start) if span else math.nan,
+    }
+
+
+def _rating_cells(rating: Rating) -> dict[str, Cell]:
+    return {
+        "verdict": str(rating.verdict),
+        "checked": ", ".join(rating.checked),
+        "not_checked": ", ".join(rating.not_checked),
+        "reasons": "; ".join(reason.text for reason in rating.reasons),
+        "utilisation": rating.utilisation,
+        "utilisation_state": utilisation_state(rating.utilisation),
+        **_governing_cells(rating.governing),
+    }
+
+
+def _governing_cells(state: LimitStateRating | None) -> dict[str, Cell]:
+    cells = _limit_state_cells(state) if state else {}
+    return {
+        "governing": cells.get("title", ""),
+        "governing_position_m": cells.get("position_m", math.nan),
+        "governing_combination": cells.get("combination", ""),
+        "governing_clause": cells.get("clause", ""),
+        "governing_demand": cells.get("demand", math.nan),
+        "governing_resistance": cells.get("resistance", math.nan),
+        "governing_unit": cells.get("unit", ""),
+    }
+
+
+def _limit_state_cells(state: LimitStateRating) -> dict[str, Cell]:
+    factor, unit = _FOR_PEOPLE.get(state.demand_unit, (1.0, state.demand_unit))
+    return {
+        "limit_state": state.name,
+        "title": state.title,
+        "utilisation": state.utilisation,
+        "utilisation_state": utilisation_state(state.utilisation),
+        "position_m": _metres(state.position),
+        "combination": state.combination,
+        "demand": state.demand / factor,
+        "resistance": state.resistance / factor,
+        "unit": unit,
+        "clause": state.clause,
+        "counted": state.counted,
+        "why_not": state.why_not,
+    }
+
+
+def _state_cells(rating: Rating, names: Sequence[str]) -> dict[str, Cell]:
+    used = {state.name: state.utilisation for state in rating.limit_states}
+    return {f"utilisation_{name}": used.get(name, math.nan) for name in names}
+
+
+def _case_cells(rating: Rating, cases: Sequence[str]) -> dict[str, Cell]:
+    found = {safe.case: _safe_load_cells(safe) for safe in rating.safe_loads}
+    rated = rating.verdict is not Verdict.NOT_RATED
+    state = "no load of this case" if rated else factor_state(math.nan)
+    blank = {**_safe_load_cells(_NO_LOAD), "factor_state": state}
+    return {
+        f"{case}_{name}": value for case in cases for name, value in found.get(case, blank).items()
+    }
+
+
+def _safe_load_cells(safe: SafeLoad) -> dict[str, Cell]:
+    factor, unit = _SINGLE_UNITS.get(safe.single_kind, (1.0, ""))
+    return {
+        "factor": safe.factor,
+        "factor_state": factor_state(safe.factor),
+        "assigned": safe.assigned,
+        "safe_load": safe.text,
+        "single_load": safe.single_value / factor,
+        "single_unit": unit if math.isfinite(safe.single_value) else "",
+        "limited_by": safe.governing,
+        "limited_at_m": _metres(safe.position),
+    }
+
+
+def utilisation_state(utilisation: float) -> str:
+    """Return in words whether a utilisation is known."""
+    if math.isnan(utilisation):
+        return "not known"
+    return "no resistance" if math.isinf(utilisation) else "known"
+
+
+def factor_state(factor: float) -> str:
+    """Return in words whether a rating factor is a number, and if not, why."""
+    if math.isnan(factor):
+        return "not rated"
+    return "not limited" if math.isinf(factor) else "rated"
+
+
+def _metres(length: float) -> float:
+    return round(length / 1000.0, 6)
