@@ -60,7 +60,7 @@ _PLAIN_SIZE = re.compile(r"([0-9]{1,3})(?:\s*mm)?")
 _TERM = re.compile(
     r"(?P<count>[+-]?[0-9]{1,9})\s*"
     r"(?:(?P<times>[x×*])\s*(?P<any>\S.*)|-\s*(?P<dashed>[0-9#A-ZØø⌀φΦ∅].*)"
-    r"|(?<=\s)(?P<spaced>[0-9].*)|(?P<joined>(?!M\b)[^0-9\s].*))"
+    r"|(?<=\s)(?P<spaced>[0-9].*)|(?P<joined>(?!M\b)[#A-Za-zØø⌀φΦ∅].*))"
 )
 _LEGS = r"(?P<{name}>[+-]?[0-9]{{1,9}})\s*-?\s*legs?"
 _STIRRUPS = re.compile(

@@ -74,7 +74,11 @@ UNITS: dict[Kind, dict[str, Fraction]] = {
         for force, newtons in forces.items()
         for length, millimetres in lengths.items()
     },
-    "unit_weight": {**_per_length(3), "pcf": POUND_FORCE / FOOT**3},
+    "unit_weight": {
+        **{f"{force}/m3": newtons / 10**9 for force, newtons in _METRIC_FORCES.items()},
+        **{f"{force}/ft3": newtons / FOOT**3 for force, newtons in _US_FORCES.items()},
+        "pcf": POUND_FORCE / FOOT**3,
+    },
     "density": {
         "kg/m3": Fraction(1),
         "lb/ft3": POUND / (FOOT / 1000) ** 3,
@@ -110,6 +114,9 @@ _DISPLAY: dict[ShownKind, _Display] = {
     "dimension": _Display("a dimension", "400 mm", "", "mm", 1.0),
     "area": _Display("an area", "500 mm2", "", "mm2", 1.0),
 }
+
+TINY = 1e-3
+"""What is smaller than this, in the unit that people read, is shown with a power of ten."""
 
 _MASSES = {"kg": "kgf", "t": "tf", "tonne": "tf", "ton": "kip", "lb": "lbf", "lbs": "lbf"}
 _NUMBER = r"(?:[0-9]{1,20}(?:\.[0-9]{1,30})?|\.[0-9]{1,30})(?:[eE][+-]?[0-9]{1,3})?"
@@ -295,6 +302,8 @@ def show(
     shown = _DISPLAY[kind]
     number = value / shown.factor
     decimals = 2 if kind == "length" and digits is None else _decimals(number, digits or 3)
+    if rounding == "nearest" and 0.0 < abs(number) < TINY and kind != "length":
+        return f"{number:.{(digits or 3) - 1}e} {shown.unit}"
     return f"{_rounded(number, decimals, rounding)} {shown.unit}"
 
 
@@ -310,9 +319,9 @@ def _rounded(number: float, decimals: int, rounding: Rounding) -> str:
         scaled = math.floor(scaled) if rounding == "down" else math.ceil(scaled)
         number = scaled / 10**decimals
     text = f"{number:.{decimals}f}"
-    if float(text) == 0.0:
-        return "0" if number == 0.0 else f"{number:.1e}"
-    return text
+    if number == 0.0:
+        return "0"
+    return text.removeprefix("-") if float(text) == 0.0 else text
 
 
 def show_ratio(ratio: float) -> str:

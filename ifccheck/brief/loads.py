@@ -128,4 +128,5 @@ def _anchored_at_end(
 
 
 def _is(contact: Contact, name: str) -> bool:
-    return contact.other == name or contact.other.startswith((f"{name} ", f"{name},"))
+    """Whether the contact's member, told as "name (class)", has this name."""
+    return name in (contact.other, contact.other.rpartition(" (")[0])
