@@ -15,6 +15,9 @@ from ifccheck.mechanics.width_profile import compression_block, width_at
 TOLERANCE = 1e-12
 """Relative accuracy of the neutral axis depth and of equilibrium."""
 
+NEGLIGIBLE_FORCE = 1e-6
+"""Steel that can take no more than this [N] is none."""
+
 NEWTON_STEPS = 12
 """Steps after which every other step halves the bracket, so that the search must end."""
 
@@ -181,9 +184,9 @@ def _neutral_axis(sections: _Sections) -> Floats:
     """
     capacity = (sections.factor[:, None] * sections.area * sections.stress_limit).sum(axis=-1)
     deepest = np.where(sections.area > 0.0, sections.depth, 0.0).max(axis=-1, initial=0.0)
-    c = np.where(capacity == 0.0, 0.0, np.nan)
+    c = np.where(capacity <= NEGLIGIBLE_FORCE, 0.0, np.nan)
     known = np.isfinite(_out_of_balance(sections, np.maximum(deepest, 1.0))[0])
-    rows = np.flatnonzero(known & (capacity > 0.0) & (deepest > 0.0))
+    rows = np.flatnonzero(known & (capacity > NEGLIGIBLE_FORCE) & (deepest > 0.0))
     if len(rows):
         c[rows] = _search(sections.take(_mask(rows, len(c))), deepest[rows], capacity[rows])
     return c

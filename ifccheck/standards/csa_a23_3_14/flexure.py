@@ -51,6 +51,9 @@ class FlexureDetails:
     singly: Bools
     """No steel is in compression"""
     doubly: Bools
+    resisting: Bools
+    """The resistance is not nothing"""
+    not_resisting: Bools
 
 
 def _check_sagging(prepared: Prepared, demand: Demand) -> Check:
@@ -119,6 +122,8 @@ def _details(prepared: Prepared, face: FaceState, moment: Floats) -> FlexureDeta
         not_yielding=~yielding,
         singly=~doubly,
         doubly=doubly,
+        resisting=resistance != 0.0,
+        not_resisting=resistance == 0.0,
     )
     return _spread(details, moment.shape)
 
@@ -251,7 +256,10 @@ LINES = (
         "M_r", "moment resistance",
         "T*d_T - C_c*x_c - C_s*x_s", "resistance", "N*mm", "10.1.1", when="doubly",
     ),
-    CalculationLine("U", "utilisation", "M_f/M_r", "utilisation", "", "8.1.3"),
+    CalculationLine(
+        "U", "utilisation", "M_f/M_r", "utilisation", "", "8.1.3", when="resisting",
+    ),
+    CalculationLine("U", "utilisation", "", "utilisation", "", "8.1.3", when="not_resisting"),
 )  # fmt: skip
 
 
