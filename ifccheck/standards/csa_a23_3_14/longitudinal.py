@@ -272,7 +272,7 @@ FORCE_LINES = (
     CalculationLine(
         "F",
         "tension on the flexural tension side",
-        "max(Mf / dv, min(Mf / dv + (V - 0.5 * min(Vs, V)) / tan(radians(theta)), M_max / z))",
+        "min(Mf / dv + (V - 0.5 * min(Vs, V)) / tan(radians(theta)), M_max / z)",
         "force",
         "N",
         "11.3.9.2, 11.3.9.4",
