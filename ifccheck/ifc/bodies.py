@@ -125,11 +125,12 @@ def read_prism(context: Context, profiles: Profiles, placed: Placed) -> Prism:
     kind = item.is_a()
     if kind != "IfcExtrudedAreaSolid":
         raise UnreadableError(f"body is a {NOT_READ_YET.get(kind, kind)}: not read yet")
-    prism = _extrusion(context, profiles, item, matrix)
+    prism = extrusion(context, profiles, item, matrix)
     return replace(prism, cuts=tuple(cut.moved(matrix) for cut in cuts)) if cuts else prism
 
 
-def _extrusion(context: Context, profiles: Profiles, item: Entity, matrix: Matrix) -> Prism:
+def extrusion(context: Context, profiles: Profiles, item: Entity, matrix: Matrix) -> Prism:
+    """Return an IfcExtrudedAreaSolid in the building; the taper of a tapered one is not in it."""
     profile = profiles.of(item[0])
     position = context.placements.axes(item[1])
     depth = item[3] * context.units.length

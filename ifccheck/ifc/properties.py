@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator, Mapping
+from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass
 from typing import Any
 
@@ -47,33 +47,40 @@ class Properties:
         self._units = units
         self._relations = relations
         self._by_object: dict[int, Sets] = {}
-        self._by_set: dict[int, tuple[str, Set]] = {}
+        self._by_set: dict[int, Set] = {}
 
     def of(self, step_id: int) -> Sets:
         """Return the sets of an object by name; its own values go before those of its type."""
         if step_id not in self._by_object:
-            self._by_object[step_id] = self._read(self._relations.property_sets(step_id))
+            self._by_object[step_id] = self._sets(self._relations.property_sets(step_id))
         return self._by_object[step_id]
 
     def of_material(self, material_id: int) -> Sets:
         """Return the property sets of a material."""
-        return self._read(tuple(self._relations.material_properties.get(material_id, ())))
+        return self._sets(tuple(self._relations.material_properties.get(material_id, ())))
 
-    def _read(self, set_ids: tuple[int, ...]) -> Sets:
-        sets: dict[str, dict[str, PropertyValue]] = {}
+    def _sets(self, set_ids: tuple[int, ...]) -> Sets:
+        by_name: dict[str, list[Entity]] = {}
         for set_id in set_ids:
-            name, values = self._set(set_id)
-            known = sets.setdefault(name, {})
-            for key, value in values.items():
-                known.setdefault(key, value)
-        return sets
-
-    def _set(self, set_id: int) -> tuple[str, Set]:
-        if set_id not in self._by_set:
             entity = self._file.by_id(set_id)
-            name = text(entity, "Name") or entity.is_a()
-            self._by_set[set_id] = (name, dict(self._values(entity)))
-        return self._by_set[set_id]
+            by_name.setdefault(text(entity, "Name") or entity.is_a(), []).append(entity)
+        return _SetsOfObject(self, by_name)
+
+    def values(self, entities: Sequence[Entity]) -> Set:
+        """Return the values of sets of one name; of two values the first counts."""
+        if len(entities) == 1:
+            return self._values_of(entities[0])
+        merged: dict[str, PropertyValue] = {}
+        for entity in entities:
+            for key, value in self._values_of(entity).items():
+                merged.setdefault(key, value)
+        return merged
+
+    def _values_of(self, entity: Entity) -> Set:
+        step_id = entity.id()
+        if step_id not in self._by_set:
+            self._by_set[step_id] = dict(self._values(entity))
+        return self._by_set[step_id]
 
     def _values(self, entity: Entity) -> Iterator[tuple[str, PropertyValue]]:
         if entity.is_a("IfcElementQuantity"):
@@ -153,3 +160,23 @@ class Properties:
                     name,
                     PropertyValue(value, measure, factor, entity.id(), MEASURE_KINDS[measure]),
                 )
+
+
+class _SetsOfObject(Mapping[str, Set]):
+    """The sets of one object; the values of a set are read when it is first looked into."""
+
+    def __init__(self, properties: Properties, by_name: dict[str, list[Entity]]) -> None:
+        self._properties = properties
+        self._by_name = by_name
+        self._read: dict[str, Set] = {}
+
+    def __getitem__(self, name: str) -> Set:
+        if name not in self._read:
+            self._read[name] = self._properties.values(self._by_name[name])
+        return self._read[name]
+
+    def __iter__(self) -> Iterator[str]:
+        return iter(self._by_name)
+
+    def __len__(self) -> int:
+        return len(self._by_name)

@@ -27,6 +27,8 @@ class Relations:
     sets: Mapping[int, Sequence[int]]
     """Property and quantity sets related to an object directly, or held by a type."""
     openings: Mapping[int, Sequence[int]]
+    projections: Mapping[int, Sequence[int]]
+    """Features that stick out of an element, modelled beside its body."""
     material_properties: Mapping[int, Sequence[int]]
     """Property entities of a material."""
 
@@ -89,6 +91,7 @@ class _Gathering:
     materials: dict[int, int] = field(default_factory=dict)
     sets: dict[int, list[int]] = field(default_factory=lambda: defaultdict(list))
     openings: dict[int, list[int]] = field(default_factory=lambda: defaultdict(list))
+    projections: dict[int, list[int]] = field(default_factory=lambda: defaultdict(list))
     material_properties: dict[int, list[int]] = field(default_factory=lambda: defaultdict(list))
 
 
@@ -109,6 +112,7 @@ def read_relations(file: Any) -> Relations:
         materials=found.materials,
         sets=dict(found.sets),
         openings=dict(found.openings),
+        projections=dict(found.projections),
         material_properties=dict(found.material_properties),
     )
 
@@ -164,6 +168,12 @@ def _read_opening(found: _Gathering, relation: Entity) -> None:
         found.openings[element.id()].append(opening.id())
 
 
+def _read_projection(found: _Gathering, relation: Entity) -> None:
+    element, feature = relation[4], relation[5]
+    if element is not None and feature is not None:
+        found.projections[element.id()].append(feature.id())
+
+
 READERS = {
     "IfcRelAggregates": _read_parts,
     "IfcRelNests": _read_parts,
@@ -173,6 +183,7 @@ READERS = {
     "IfcRelDefinesByProperties": _read_sets,
     "IfcRelOverridesProperties": _read_sets,
     "IfcRelVoidsElement": _read_opening,
+    "IfcRelProjectsElement": _read_projection,
 }
 
 

@@ -144,10 +144,14 @@ def read_units(file: Any) -> ModelUnits:
 
 
 def _assigned_units(file: Any) -> Iterable[Entity]:
-    for project in file.by_type("IfcProject"):
-        assignment = get(project, "UnitsInContext")
-        if assignment is not None:
-            yield from several(assignment, "Units")
+    projects = file.by_type("IfcProject")
+    assignments = [get(project, "UnitsInContext") for project in projects]
+    given = [assignment for assignment in assignments if assignment is not None]
+    if not given:
+        alone = file.by_type("IfcUnitAssignment")
+        given = list(alone) if len(alone) == 1 else []
+    for assignment in given:
+        yield from several(assignment, "Units")
 
 
 def scale_of(unit: Entity) -> tuple[UnitKind, float]:

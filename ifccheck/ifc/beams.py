@@ -1,0 +1,286 @@
+"""One beam of a model: what it is, its axis and outline, its concrete."""
+
+from __future__ import annotations
+
+import re
+from collections.abc import Iterator
+from dataclasses import dataclass, field
+
+from ifccheck.beam import Beam, Box, Given, OutOfScope, Reason, Remark, Run
+from ifccheck.ifc.bodies import body_items, read_prism
+from ifccheck.ifc.context import Context
+from ifccheck.ifc.entity import Entity, UnreadableError, get, text
+from ifccheck.ifc.materials import MaterialDefinition, Materials
+from ifccheck.ifc.profiles import Profiles
+from ifccheck.ifc.properties import PropertyValue, Sets
+from ifccheck.ifc.scope import Clues, judge
+from ifccheck.ifc.storeys import Storeys
+from ifccheck.ifc.straight import Straight, straighten
+from ifccheck.ifc.strength import Strengths, concrete_strength
+from ifccheck.ifc.vocabulary import LIGHTWEIGHT, PRESTRESSED
+
+GENERAL = "Pset_ConcreteElementGeneral"
+GEOMETRY, MATERIALS = "geometry", "materials"
+COVERS = ("ConcreteCoverAtLinks", "ConcreteCover")
+THICKEST_COVER = 200.0
+"""Covers beyond this are misread units [mm]."""
+DENSITIES = (1000.0, 3500.0)
+"""Densities that concrete has [kg/m3]."""
+
+
+@dataclass(frozen=True, slots=True)
+class Identity:
+    """How a beam is known."""
+
+    key: str
+    guid: str
+    ordinal: int
+
+
+@dataclass
+class Found:
+    """A beam as it was read: kept or left out, and the box round it where its body was read."""
+
+    beam: Beam | OutOfScope
+    box: Box | None
+
+
+@dataclass
+class _Doubts:
+    """What is doubtful of one beam."""
+
+    beam: str
+    reasons: list[Reason] = field(default_factory=list)
+    remarks: list[Remark] = field(default_factory=list)
+
+    def reason(self, text: str, blocking: bool = True) -> None:
+        self.reasons.append(Reason(text, blocking))
+
+    def remark(self, stage: str, text: str) -> None:
+        self.remarks.append(Remark(self.beam, stage, text, "doubt"))
+
+
+class BeamReader:
+    """Reads the beams of one model."""
+
+    def __init__(self, context: Context, profiles: Profiles, storeys: Storeys, model: str) -> None:
+        self._context = context
+        self._profiles = profiles
+        self._storeys = storeys
+        self._model = model
+        self._materials = Materials(context)
+        self._strengths = Strengths(context)
+        self._prestressed = prestressed_wholes(context)
+        self._type_names: dict[int, str] = {}
+
+    def read(self, entity: Entity, identity: Identity) -> Found:
+        """Return what the model says of a beam."""
+        step_id = entity.id()
+        doubts = _Doubts(identity.key)
+        straight = self._straight(entity, doubts)
+        definition = self._materials.of(step_id)
+        sets = self._context.properties.of(step_id)
+        clues = self._clues(entity, straight, definition, sets)
+        scope = judge(clues)
+        box = straight.box if straight is not None else None
+        if scope.left_out is not None:
+            return Found(self._left_out(entity, identity, *scope.left_out), box)
+        if scope.doubt is not None:
+            doubts.reason(scope.doubt)
+        self._doubt_kind(entity, clues, doubts)
+        beam = self._beam(entity, identity, straight, clues, sets, doubts)
+        return Found(beam, box)
+
+    def _straight(self, entity: Entity, doubts: _Doubts) -> Straight | None:
+        try:
+            items = body_items(self._context, entity)
+            if len(items) != 1:
+                raise UnreadableError(_number_of_bodies(len(items)))
+            prism = read_prism(self._context, self._profiles, items[0])
+            straight = straighten(prism, self._context.placements.matrix(entity))
+        except UnreadableError as error:
+            doubts.reason(str(error))
+            return None
+        for end, length, steep in zip(
+            ("start", "end"), straight.oblique, straight.steep, strict=True
+        ):
+            _note_oblique(end, length, steep, doubts)
+        return straight
+
+    def _clues(
+        self,
+        entity: Entity,
+        straight: Straight | None,
+        definition: MaterialDefinition,
+        sets: Sets,
+    ) -> Clues:
+        step_id = entity.id()
+        profile = straight.outline.name if straight is not None else ""
+        own = (text(entity, "Name"), text(entity, "ObjectType"), self._type_name(step_id), profile)
+        strength_class = sets.get(GENERAL, {}).get("StrengthClass")
+        return Clues(
+            definition=definition,
+            names=tuple(dict.fromkeys(name for name in own if name)),
+            hosts_bars=self._hosts_bars(step_id),
+            concrete_class=strength_class is not None and bool(strength_class.value),
+        )
+
+    def _type_name(self, step_id: int) -> str:
+        type_id = self._context.relations.type_of(step_id)
+        if type_id is None:
+            return ""
+        if type_id not in self._type_names:
+            self._type_names[type_id] = text(self._context.file.by_id(type_id), "Name")
+        return self._type_names[type_id]
+
+    def _hosts_bars(self, step_id: int) -> bool:
+        by_id = self._context.file.by_id
+        return any(
+            part.is_a("IfcReinforcingBar") or part.is_a("IfcReinforcingMesh")
+            for part in map(by_id, self._context.relations.descendants(step_id))
+        )
+
+    def _left_out(
+        self, entity: Entity, identity: Identity, reason: str, evidence: str
+    ) -> OutOfScope:
+        return OutOfScope(
+            guid=identity.guid,
+            step_id=entity.id(),
+            name=text(entity, "Name") or text(entity, "Tag"),
+            storey=self._storeys.name_of(entity.id()),
+            reason=reason,
+            evidence=evidence,
+        )
+
+    def _doubt_kind(self, entity: Entity, clues: Clues, doubts: _Doubts) -> None:
+        """Reasons that lie in what the beam is: prestressed, with openings, lightweight."""
+        step_id = entity.id()
+        relations = self._context.relations
+        if not self._prestressed.isdisjoint((step_id, *relations.ancestors(step_id))):
+            doubts.reason("prestressed: the model holds tendons in it")
+        elif get(entity, "PredefinedType") == "HOLLOWCORE":
+            doubts.reason("prestressed: a hollow-core unit")
+        elif named := _first(PRESTRESSED, _all_names(clues)):
+            doubts.reason(f'prestressed: named so in "{named}"')
+        if openings := relations.openings.get(step_id):
+            doubts.reason(f"{_count(len(openings), 'opening')} not read yet")
+        if features := relations.projections.get(step_id):
+            doubts.reason(f"{_count(len(features), 'projecting feature')} not read yet")
+
+    def _beam(
+        self,
+        entity: Entity,
+        identity: Identity,
+        straight: Straight | None,
+        clues: Clues,
+        sets: Sets,
+        doubts: _Doubts,
+    ) -> Beam:
+        step_id = entity.id()
+        readings = self._strengths.of(clues.definition, sets)
+        strength, remarks = concrete_strength(readings, identity.key)
+        doubts.remarks += remarks
+        density = self._density(clues, doubts)
+        return Beam(
+            key=identity.key,
+            guid=identity.guid,
+            ordinal=identity.ordinal,
+            step_id=step_id,
+            model=self._model,
+            ifc_class=entity.is_a(),
+            name=text(entity, "Name"),
+            tag=text(entity, "Tag"),
+            type_name=self._type_name(step_id) or text(entity, "ObjectType"),
+            storey=self._storeys.name_of(step_id),
+            axis=straight.axis if straight is not None else None,
+            runs=_runs(straight),
+            material=clues.definition.title,
+            concrete_strength=strength,
+            concrete_density=density,
+            cover=_cover(sets, doubts),
+            reasons=tuple(doubts.reasons),
+            remarks=tuple(doubts.remarks),
+        )
+
+    def _density(self, clues: Clues, doubts: _Doubts) -> Given | None:
+        """The least density that the materials state."""
+        found: list[Given] = []
+        for material in clues.definition.materials:
+            for name, values in self._context.properties.of_material(material.step_id).items():
+                if (value := values.get("MassDensity")) is not None:
+                    source = f'{name}.MassDensity of "{material.name}"'
+                    found += _stated_density(value, source, doubts)
+        if found:
+            return min(found, key=lambda given: given.value)
+        if named := _first(LIGHTWEIGHT, _all_names(clues)):
+            doubts.reason(f'lightweight concrete of unstated density: "{named}"', blocking=False)
+        return None
+
+
+def _number_of_bodies(count: int) -> str:
+    return "no body in the model" if count == 0 else f"body of {count} parts: not read yet"
+
+
+def _note_oblique(end: str, length: float, steep: bool, doubts: _Doubts) -> None:
+    if length > 1.0:
+        text = (
+            f"the {end} is cut obliquely over {length:.0f} mm of the axis: "
+            "the length is measured on the line through the outline's centroid"
+        )
+        doubts.remark(GEOMETRY, text)
+    if steep:
+        doubts.reason(f"depth is reduced by the oblique cut at the {end}", blocking=False)
+
+
+def _runs(straight: Straight | None) -> tuple[Run, ...]:
+    if straight is None:
+        return ()
+    return (Run(0.0, straight.axis.length, straight.outline),)
+
+
+def _cover(sets: Sets, doubts: _Doubts) -> Given | None:
+    """The thickest cover that the beam's set states: that makes the least of the depth."""
+    found: list[Given] = []
+    for name in COVERS:
+        value = sets.get(GENERAL, {}).get(name)
+        if value is None or value.value is None:
+            continue
+        source = f"{GENERAL}.{name}"
+        cover = value.number
+        if value.kind == "length" and cover is not None and 0.0 < cover <= THICKEST_COVER:
+            found.append(Given(cover, source))
+        else:
+            doubts.remark(MATERIALS, f"{source} of {value.value} is no cover: not used")
+    return max(found, key=lambda given: given.value, default=None)
+
+
+def _stated_density(value: PropertyValue, source: str, doubts: _Doubts) -> Iterator[Given]:
+    density = value.number
+    if density is not None and DENSITIES[0] <= density <= DENSITIES[1]:
+        yield Given(density, source)
+    elif value.value:
+        doubts.remark(MATERIALS, f"{source} of {value.value} is no density of concrete: not used")
+
+
+def _all_names(clues: Clues) -> tuple[str, ...]:
+    materials = (part for one in clues.definition.materials for part in (one.name, one.description))
+    return (*materials, *clues.definition.set_names, *clues.names)
+
+
+def _first(pattern: re.Pattern[str], names: tuple[str, ...]) -> str:
+    return next((name for name in names if pattern.search(name)), "")
+
+
+def _count(number: int, noun: str) -> str:
+    return f"{number} {noun}{'s' if number > 1 else ''}"
+
+
+def prestressed_wholes(context: Context) -> frozenset[int]:
+    """Return the ids of all that holds a tendon, spatial elements apart."""
+    found: set[int] = set()
+    for kind in ("IfcTendon", "IfcTendonAnchor"):
+        for tendon in context.file.by_type(kind):
+            for whole in context.relations.ancestors(tendon.id()):
+                if context.file.by_id(whole).is_a("IfcElement"):
+                    found.add(whole)
+    return frozenset(found)

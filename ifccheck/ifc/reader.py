@@ -1,0 +1,110 @@
+"""Reads a model: its beams, what they touch, its storeys."""
+
+from __future__ import annotations
+
+from collections import Counter
+from collections.abc import Iterator, Mapping, Sequence
+from typing import Any, Protocol
+
+from ifccheck.beam import Beam, Box, Model, OutOfScope, Remark
+from ifccheck.errors import ModelError
+from ifccheck.ifc.beams import BeamReader, Identity
+from ifccheck.ifc.boxes import Boxes
+from ifccheck.ifc.context import BeamFrame, Context, make_context
+from ifccheck.ifc.entity import Entity, text
+from ifccheck.ifc.members import read_members
+from ifccheck.ifc.profiles import Profiles
+from ifccheck.ifc.storeys import Storeys
+
+STAGE = "reading"
+
+
+class Opened(Protocol):
+    """What reading needs of an opened model."""
+
+    @property
+    def file(self) -> Any: ...  # noqa: D102
+    @property
+    def schema(self) -> str: ...  # noqa: D102
+    @property
+    def name(self) -> str: ...  # noqa: D102
+    @property
+    def file_name(self) -> str: ...  # noqa: D102
+    @property
+    def sha256(self) -> str: ...  # noqa: D102
+    @property
+    def remarks(self) -> tuple[Remark, ...]: ...  # noqa: D102
+
+
+def read_model(opened: Opened, mapping: Mapping[str, str]) -> Model:
+    """Return all that a model says of its beams.
+
+    ``mapping`` names the properties that hold reinforcement: field = "Set.Property".
+    Raises ModelError where the model has no unit of length to measure its beams by.
+    """
+    context = make_context(opened.file, opened.schema)
+    entities = opened.file.by_type("IfcBeam")
+    if entities and "length" not in context.units.declared:
+        raise ModelError(
+            f"{opened.file_name}: declares no unit of length, so no beam can be measured; "
+            "assign units to its project"
+        )
+    profiles, storeys = Profiles(context.placements), Storeys(context)
+    reader = BeamReader(context, profiles, storeys, opened.name)
+    beams: list[Beam] = []
+    left_out: list[OutOfScope] = []
+    known: dict[int, Box] = {}
+    for entity, identity in _identified(entities):
+        found = reader.read(entity, identity)
+        if found.box is not None:
+            known[entity.id()] = found.box
+        if isinstance(found.beam, Beam):
+            beams.append(found.beam)
+        else:
+            left_out.append(found.beam)
+    members = read_members(context, Boxes(context, profiles), storeys, known)
+    return Model(
+        name=opened.name,
+        file_name=opened.file_name,
+        schema=opened.schema,
+        sha256=opened.sha256,
+        beams=tuple(_reinforced(context, beams, mapping)),
+        out_of_scope=tuple(left_out),
+        members=members.members,
+        storeys=storeys.all,
+        remarks=(*opened.remarks, *_repeats(entities), *members.remarks),
+    )
+
+
+def _identified(entities: Sequence[Entity]) -> Iterator[tuple[Entity, Identity]]:
+    """Each beam with its key: the GlobalId, numbered from its second appearance on."""
+    seen: Counter[str] = Counter()
+    for entity in entities:
+        guid = text(entity, "GlobalId")
+        ordinal = seen[guid]
+        seen[guid] += 1
+        key = guid if ordinal == 0 else f"{guid}~{ordinal + 1}"
+        yield entity, Identity(key, guid, ordinal)
+
+
+def _repeats(entities: Sequence[Entity]) -> Iterator[Remark]:
+    counts = Counter(text(entity, "GlobalId") for entity in entities)
+    for guid, count in counts.items():
+        if count > 1:
+            yield Remark(
+                None,
+                STAGE,
+                f"{count} beams share the GlobalId {guid}: from the second on they are "
+                f"called {guid}~2 and so forth",
+                "doubt",
+            )
+
+
+def _reinforced(
+    context: Context, beams: Sequence[Beam], mapping: Mapping[str, str]
+) -> Iterator[Beam]:
+    yield from beams
+    frames = {
+        beam.step_id: BeamFrame(beam.axis, beam.runs) for beam in beams if beam.axis is not None
+    }
+    del frames, context, mapping

@@ -1,0 +1,122 @@
+"""Which beams are concrete: left out only on positive evidence, doubtful ones kept and told."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable
+from dataclasses import dataclass
+from functools import lru_cache
+
+from ifccheck.ifc.materials import MaterialDefinition
+from ifccheck.ifc.vocabulary import (
+    BEAM_WORDS,
+    CONCRETE,
+    REBAR,
+    STEEL,
+    STEEL_SECTIONS,
+    families_named,
+    families_of_material,
+)
+
+Evidence = tuple[str, str]
+"""A material or use, and where it is read."""
+
+USES = ("footing", "bearing")
+
+
+@dataclass(frozen=True, slots=True)
+class Clues:
+    """What a model says of what a beam is."""
+
+    definition: MaterialDefinition
+    names: tuple[str, ...]
+    """Its own name, object type, type name and profile name."""
+    hosts_bars: bool
+    concrete_class: bool
+    """A concrete strength class is stated for the beam itself."""
+
+
+@dataclass(frozen=True, slots=True)
+class Scope:
+    """Whether a beam is rated: left out, or kept, surely or with a doubt."""
+
+    left_out: Evidence | None = None
+    doubt: str | None = None
+
+
+def judge(clues: Clues) -> Scope:
+    """Decide what a beam is from all that the model says of it."""
+    stated = list(_material_evidence(clues.definition))
+    if clues.hosts_bars:
+        stated.append((CONCRETE, "it hosts reinforcing bars"))
+    if clues.concrete_class:
+        stated.append((CONCRETE, "it states a concrete strength class"))
+    named = [piece for name in clues.names for piece in _name_evidence(name)]
+    used = _use(named + stated, clues.names, _is_concrete(stated))
+    if used is not None:
+        return used
+    return _by_material(
+        [one for one in stated if one[0] not in USES],
+        [one for one in named if one[0] not in USES],
+        clues.definition,
+    )
+
+
+def _use(evidence: Iterable[Evidence], names: Iterable[str], concrete: bool) -> Scope | None:
+    """Footings and bearings, whatever they are made of."""
+    for use, where in evidence:
+        if use == "footing":
+            if any(BEAM_WORDS.search(name) for name in names):
+                return Scope(doubt=f"named both a footing and a beam: {where}")
+            return Scope(left_out=(use, where))
+        if use == "bearing":
+            if concrete:
+                return Scope(doubt=f"of concrete, yet named a bearing: {where}")
+            return Scope(left_out=(use, where))
+    return None
+
+
+def _is_concrete(stated: Iterable[Evidence]) -> bool:
+    return any(family == CONCRETE for family, _ in stated)
+
+
+def _by_material(
+    stated: list[Evidence], named: list[Evidence], definition: MaterialDefinition
+) -> Scope:
+    evidence = stated + named
+    for_concrete = [one for one in evidence if one[0] == CONCRETE]
+    against = [one for one in evidence if one[0] != CONCRETE]
+    if for_concrete:
+        # reinforcing steel beside concrete is its reinforcement
+        against = [one for one in against if one[0] != REBAR]
+        if against:
+            (material, where), (other, elsewhere) = for_concrete[0], against[0]
+            return Scope(
+                doubt=f"material contradictory: {material} ({where}), yet {other} ({elsewhere})"
+            )
+        return Scope()
+    if against:
+        family, where = against[0]
+        return Scope(left_out=(STEEL if family == REBAR else family, where))
+    title = f'"{definition.title}"' if definition.title else "none given"
+    return Scope(doubt=f"material unknown: {title}")
+
+
+def _material_evidence(definition: MaterialDefinition) -> Iterable[Evidence]:
+    for material in definition.materials:
+        for name in (material.name, material.category):
+            for family in sorted(families_of_material(name)):
+                yield family, f'material "{name}"'
+    for name in definition.set_names:
+        for family in sorted(families_named(name)):
+            yield family, f'material set "{name}"'
+    for name in definition.profile_names:
+        yield from _name_evidence(name)
+
+
+@lru_cache(maxsize=8192)
+def _name_evidence(name: str) -> tuple[Evidence, ...]:
+    found = [(family, f'name "{name}"') for family in sorted(families_named(name))]
+    section = STEEL_SECTIONS.search(name)
+    if section:
+        found.append((STEEL, f'steel section "{section.group().strip()}" in "{name}"'))
+    return tuple(found)
