@@ -135,6 +135,8 @@ class LongitudinalDetails(ShearDetails):
     tension_side: Bools
     """The flexural tension side governs"""
     compression_side: Bools
+    by_limit: Bools
+    """The angle is outside its range: the force that need not be exceeded stands in"""
     force: Floats
     steel: Floats
     """phi_s fy As of that side, developed [N]"""
@@ -218,8 +220,9 @@ def _both_sides(
         **_named(replace(shear, stirrup_term=stirrup_term)),
         greatest_moment=side.moment,
         lever_arm=side.lever_arm,
-        tension_side=~governs,
-        compression_side=governs,
+        tension_side=~governs & ~outside,
+        compression_side=governs & ~outside,
+        by_limit=np.broadcast_to(outside, governs.shape),
         force=np.where(governs, compression, tension),
         steel=side.steel,
     )
@@ -286,6 +289,15 @@ FORCE_LINES = (
         "N",
         "11.3.9.3",
         "compression_side",
+    ),
+    CalculationLine(
+        "F",
+        "tension that need not be exceeded, for the angle is outside its range",
+        "M_max / z",
+        "force",
+        "N",
+        "11.3.9.4",
+        "by_limit",
     ),
     given("T", "developed steel of this side, phi_s fy As", "steel", "N", "11.3.9.1, 12.1"),
 )
