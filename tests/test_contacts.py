@@ -18,6 +18,7 @@ from ifccheck.frame.contacts import between_reactions, find_contacts, held_ends,
 
 DEPTH, WIDTH, LENGTH = 600.0, 300.0, 6000.0
 RECTANGLE = Outline((((-150.0, 0.0), (150.0, 0.0), (150.0, DEPTH), (-150.0, DEPTH)),))
+UP = (0.0, 0.0, 1.0)
 STEPS = count(1)
 
 
@@ -111,7 +112,7 @@ def test_seen_from_the_girder_our_end_is_between_and_at_its_side() -> None:
     girder_box = member("G", "IfcBeam", (-300.0, -3000.0, 0.0), (0.0, 3000.0, DEPTH))
     girder = replace(
         one, key="G", guid=girder_box.guid, step_id=girder_box.step_id,
-        axis=Axis((-150.0, -3000.0, 0.0), (0.0, 1.0, 0.0), (-1.0, 0.0, 0.0), (0.0, 0.0, 1.0), LENGTH),
+        axis=Axis((-150.0, -3000.0, 0.0), (0.0, 1.0, 0.0), (-1.0, 0.0, 0.0), UP, LENGTH),
     )  # fmt: skip
     contacts = find_contacts([one, girder], [own, girder_box])
     assert places(contacts["B"]) == [("G", "start", "end")]

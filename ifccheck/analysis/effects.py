@@ -75,19 +75,33 @@ def _extreme(
     own: Floats, other: Floats, greater: Floats, lesser: Floats, *, most: bool
 ) -> tuple[Floats, Floats, Bools]:
     """The extreme (C, N), what acts with it, and the way that cases without effect on it go."""
+    raising, lowering = (greater, lesser) if most else (lesser, greater)
+    extreme = raising @ np.maximum(own, 0.0) + lowering @ np.minimum(own, 0.0)
     worse = own > 0.0 if most else own < 0.0
+    together = greater @ (other * worse) + lesser @ (other * ~worse)
+    upward = np.ones(extreme.shape, np.bool_)
+    columns = np.flatnonzero(((own == 0.0) & (other != 0.0)).any(axis=0))
+    if columns.size:
+        together[:, columns], upward[:, columns] = _with_idle(
+            own[:, columns], other[:, columns], worse[:, columns], greater, lesser
+        )
+    return extreme, together, upward
+
+
+def _with_idle(
+    own: Floats, other: Floats, worse: Bools, greater: Floats, lesser: Floats
+) -> tuple[Floats, Bools]:
+    """What acts with an extreme on which some cases have no effect: the worse of the two ways
+    that those may go together (C, N), and whether that is upward."""
     idle = own == 0.0
-    better = ~(worse | idle)
-    extreme = greater @ np.where(worse, own, 0.0) + lesser @ np.where(better, own, 0.0)
-    together = greater @ np.where(worse, other, 0.0) + lesser @ np.where(better, other, 0.0)
-    if not (idle & (other != 0.0)).any():
-        return extreme, together, np.ones(extreme.shape, np.bool_)
-    up = np.where(idle & (other > 0.0), other, 0.0)
-    down = np.where(idle & (other < 0.0), other, 0.0)
-    highest = together + greater @ up + lesser @ down
-    lowest = together + lesser @ up + greater @ down
+    steady = np.where(idle, 0.0, other)
+    base = greater @ (steady * worse) + lesser @ (steady * ~worse)
+    up = np.where(idle, np.maximum(other, 0.0), 0.0)
+    down = np.where(idle, np.minimum(other, 0.0), 0.0)
+    highest = base + greater @ up + lesser @ down
+    lowest = base + lesser @ up + greater @ down
     upward = np.abs(highest) >= np.abs(lowest)
-    return extreme, np.where(upward, highest, lowest), upward
+    return np.where(upward, highest, lowest), upward
 
 
 def case_share(effects: Effects, case: int) -> tuple[Floats, Floats]:
@@ -203,14 +217,19 @@ def _critical_shear(shear: Floats, critical: Ints, near: _Near) -> Floats:
 
 def _reversible(effects: Effects, shares: Sequence[Floats]) -> tuple[Bools, Bools]:
     """Whether any arrangement can sag, and hog, at each station (N), for every multiple of a
-    scaled case; where nothing bends, what the stations beside it do."""
-    sag = np.asarray((effects.moment > 0.0).any(axis=(0, 1)))
-    hog = np.asarray((effects.moment < 0.0).any(axis=(0, 1)))
+    scaled case; where nothing bends, what the stations beside it do.
+
+    The arrangement of the greatest moment sags, and that of the least hogs, if any does, with
+    a scaled case or without it.
+    """
+    greatest, least = effects.moment[:, GREATEST_MOMENT], effects.moment[:, LEAST_MOMENT]
+    sag = np.asarray((greatest > 0.0).any(axis=0))
+    hog = np.asarray((least < 0.0).any(axis=0))
     for share in shares:
-        rest = effects.moment - share
-        slack = 1e-9 * np.abs(effects.moment)
-        sag |= ((share > 0.0) | (rest > slack)).any(axis=(0, 1))
-        hog |= ((share < 0.0) | (rest < -slack)).any(axis=(0, 1))
+        raising, lowering = share[:, GREATEST_MOMENT], share[:, LEAST_MOMENT]
+        rounding = 1e-9 * np.abs(greatest), 1e-9 * np.abs(least)
+        sag |= ((raising > 0.0) | (greatest - raising > rounding[0])).any(axis=0)
+        hog |= ((lowering < 0.0) | (least - lowering < -rounding[1])).any(axis=0)
     flat = ~(sag | hog)
     beam = effects.cases.beam
     return sag | (flat & _beside(sag, beam)), hog | (flat & _beside(hog, beam))
