@@ -8,17 +8,17 @@ from typing import get_args
 from ifccheck.beam import SELF, Case, Nature
 from ifccheck.brief import schema
 from ifccheck.brief.cases import SELF_WEIGHT, factors_of
-from ifccheck.brief.faults import FaultError, Source
+from ifccheck.brief.faults import FaultError
 from ifccheck.brief.model import CombinationEntry
 from ifccheck.brief.places import Path, did_you_mean, shown
 
 
 def combination_entries(
-    tables: Sequence[schema.CombinationTable], cases: Sequence[Case], source: Source
+    tables: Sequence[schema.CombinationTable], cases: Sequence[Case]
 ) -> tuple[CombinationEntry, ...]:
     """Return the entries of ``[[combinations]]``; raise FaultError where one leaves a case out."""
     _check_names(tables)
-    entries = tuple(_entry(i, table, cases, source) for i, table in enumerate(tables))
+    entries = tuple(_entry(i, table, cases) for i, table in enumerate(tables))
     _check_none_idle(entries, cases)
     return entries
 
@@ -34,9 +34,7 @@ def _check_names(tables: Sequence[schema.CombinationTable]) -> None:
         seen[table.name] = index
 
 
-def _entry(
-    index: int, table: schema.CombinationTable, cases: Sequence[Case], source: Source
-) -> CombinationEntry:
+def _entry(index: int, table: schema.CombinationTable, cases: Sequence[Case]) -> CombinationEntry:
     path: Path = ("combinations", index)
     known = [SELF, *(case.name for case in cases), *get_args(Nature)]
     for name, factor in table.factors.items():
@@ -52,9 +50,7 @@ def _entry(
                 f"has no factor for case '{case.name}':"
                 f" give one for it or for {case.nature}, 0 included",
             )
-    return CombinationEntry(
-        shown(path), source.line(path), table.name, table.kind, dict(table.factors)
-    )
+    return CombinationEntry(shown(path), table.name, table.kind, dict(table.factors))
 
 
 def _check_factor(

@@ -13,7 +13,7 @@ from ifccheck.brief.entries import beam_entry, material_entry, support_entry
 from ifccheck.brief.faults import FaultError, Source
 from ifccheck.brief.load_entries import load_entry
 from ifccheck.brief.model import Basis, Brief, Defaults, ReinforcementField
-from ifccheck.brief.places import did_you_mean
+from ifccheck.brief.places import did_you_mean, shown
 
 DEFAULT_SOURCES: tuple[SourceName, ...] = ("schedule", "bars", "sections", "properties")
 RESERVED = (SELF, *get_args(Nature))
@@ -31,12 +31,13 @@ def to_brief(table: schema.BriefTable, path: Path, source: Source) -> Brief:
         sources=_sources(table.reinforcement),
         schedule=_schedule(table.reinforcement, path),
         property_mapping=_mapping(table.reinforcement.properties),
+        lines={shown(key): line for key, line in source.lines.items()},
         cases=cases,
-        loads=tuple(load_entry(i, t, cases, source) for i, t in enumerate(table.loads)),
-        supports=tuple(support_entry(i, t, source) for i, t in enumerate(table.supports)),
-        beams=tuple(beam_entry(i, t, source) for i, t in enumerate(table.beams)),
-        materials=tuple(material_entry(i, t, source) for i, t in enumerate(table.materials)),
-        combinations=combination_entries(table.combinations, cases, source),
+        loads=tuple(load_entry(i, t, cases) for i, t in enumerate(table.loads)),
+        supports=tuple(support_entry(i, t) for i, t in enumerate(table.supports)),
+        beams=tuple(beam_entry(i, t) for i, t in enumerate(table.beams)),
+        materials=tuple(material_entry(i, t) for i, t in enumerate(table.materials)),
+        combinations=combination_entries(table.combinations, cases),
     )
 
 

@@ -5,7 +5,7 @@ from __future__ import annotations
 from typing import TypedDict
 
 from ifccheck.brief import schema
-from ifccheck.brief.faults import FaultError, Source
+from ifccheck.brief.faults import FaultError
 from ifccheck.brief.model import BeamEntry, MaterialEntry, Selection, SupportEntry
 from ifccheck.brief.places import Path, shown
 from ifccheck.brief.supports import cannot_stand
@@ -15,16 +15,14 @@ class Head(TypedDict):
     """What every entry begins with."""
 
     place: str
-    line: int | None
     selection: Selection
     optional: bool
 
 
-def head(path: Path, table: schema.SelectingTable, source: Source) -> Head:
-    """Place, line and selection of an entry."""
+def head(path: Path, table: schema.SelectingTable) -> Head:
+    """Place and selection of an entry."""
     return Head(
         place=shown(path),
-        line=source.line(path),
         selection=_selection(path, table),
         optional=table.optional,
     )
@@ -49,7 +47,7 @@ def _states_something(path: Path, table: schema.SelectingTable, keys: tuple[str,
         raise FaultError(path, f"states nothing: give at least one of {', '.join(keys)}")
 
 
-def support_entry(index: int, table: schema.SupportTable, source: Source) -> SupportEntry:
+def support_entry(index: int, table: schema.SupportTable) -> SupportEntry:
     """An entry of ``[[supports]]``."""
     path: Path = ("supports", index)
     _states_something(path, table, ("start", "end", "bearing"))
@@ -59,17 +57,17 @@ def support_entry(index: int, table: schema.SupportTable, source: Source) -> Sup
         if kind == "free" and width > 0.0:
             raise FaultError((*path, "bearing"), "gives a free end a bearing: write 0 mm for it")
     return SupportEntry(
-        **head(path, table, source), start=table.start, end=table.end, bearing=table.bearing
+        **head(path, table), start=table.start, end=table.end, bearing=table.bearing
     )
 
 
-def beam_entry(index: int, table: schema.BeamTable, source: Source) -> BeamEntry:
+def beam_entry(index: int, table: schema.BeamTable) -> BeamEntry:
     """An entry of ``[[beams]]``."""
     path: Path = ("beams", index)
     keys = ("span", "unloaded", "loads_complete", "torsion")
     _states_something(path, table, keys)
     return BeamEntry(
-        **head(path, table, source),
+        **head(path, table),
         span=table.span,
         unloaded=table.unloaded,
         loads_complete=table.loads_complete,
@@ -77,13 +75,13 @@ def beam_entry(index: int, table: schema.BeamTable, source: Source) -> BeamEntry
     )
 
 
-def material_entry(index: int, table: schema.MaterialTable, source: Source) -> MaterialEntry:
+def material_entry(index: int, table: schema.MaterialTable) -> MaterialEntry:
     """An entry of ``[[materials]]``."""
     path: Path = ("materials", index)
     keys = (*schema.MaterialsTable.model_fields, "density")
     _states_something(path, table, keys)
     return MaterialEntry(
-        **head(path, table, source),
+        **head(path, table),
         concrete_strength=table.concrete_strength,
         bar_yield=table.bar_yield,
         stirrup_yield=table.stirrup_yield,

@@ -59,13 +59,13 @@ def _path(error: Any) -> Path:
     return tuple(part for part in error["loc"] if part != "[key]")
 
 
+_PLAIN_WORDS = {"missing": "is missing", "string_too_short": "is empty"}
 _TYPE_WORDS = {
     "bool_type": "must be true or false",
     "string_type": "must be text in quotes",
     "list_type": "must be a list",
     "dict_type": "must be a table",
     "model_type": "must be a table",
-    "string_too_short": "is empty",
     "string_too_long": "is too long",
     "string_pattern_mismatch": "must be text on one line",
 }
@@ -76,8 +76,8 @@ def _words(error: Any, path: Path, known_keys: Any) -> str:
     if kind == "extra_forbidden":
         key = str(path[-1])
         return f"unknown key {clipped(key)}: {did_you_mean(key, known_keys(path[:-1]))}"
-    if kind == "missing":
-        return "is missing"
+    if kind in _PLAIN_WORDS:
+        return _PLAIN_WORDS[kind]
     if kind == "value_error":
         return str(error["ctx"]["error"])
     if kind == "literal_error":

@@ -8,7 +8,7 @@ from typing import NamedTuple
 from ifccheck.beam import Case, LoadKind
 from ifccheck.brief import schema
 from ifccheck.brief.entries import head
-from ifccheck.brief.faults import FaultError, Source
+from ifccheck.brief.faults import FaultError
 from ifccheck.brief.model import LoadEntry, Position
 from ifccheck.brief.places import Path, did_you_mean
 from ifccheck.brief.quantities import LEAST_LENGTH, Written
@@ -22,12 +22,10 @@ class _Amount(NamedTuple):
     text: str
 
 
-def load_entry(
-    index: int, table: schema.LoadTable, cases: Sequence[Case], source: Source
-) -> LoadEntry:
+def load_entry(index: int, table: schema.LoadTable, cases: Sequence[Case]) -> LoadEntry:
     """An entry of ``[[loads]]``; raises FaultError at the key that is wrong."""
     path: Path = ("loads", index)
-    beginning = head(path, table, source)
+    beginning = head(path, table)
     _check_case(path, table, cases)
     amount = _amount(path, table)
     _check_places(path, table, amount.kind)

@@ -56,8 +56,6 @@ class LoadEntry:
 
     place: str
     """ "loads[3]", counted from 1 as a reader counts"""
-    line: int | None
-    """Line of the brief where the entry begins"""
     selection: Selection
     optional: bool
     """True where the entry may reach no beam"""
@@ -83,7 +81,6 @@ class SupportEntry:
     """One entry of ``[[supports]]``; None for what it does not speak of."""
 
     place: str
-    line: int | None
     selection: Selection
     optional: bool
     start: SupportKind | None
@@ -96,7 +93,6 @@ class BeamEntry:
     """One entry of ``[[beams]]``: statements about single beams; None where it is silent."""
 
     place: str
-    line: int | None
     selection: Selection
     optional: bool
     span: float | None
@@ -111,7 +107,6 @@ class MaterialEntry:
     """One entry of ``[[materials]]``; None where it is silent."""
 
     place: str
-    line: int | None
     selection: Selection
     optional: bool
     concrete_strength: float | None
@@ -124,7 +119,7 @@ class MaterialEntry:
 
 
 Entry = LoadEntry | SupportEntry | BeamEntry | MaterialEntry
-"""What has a selection: ``place``, ``line``, ``selection`` and ``optional``."""
+"""What has a selection: ``place``, ``selection`` and ``optional``."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -133,7 +128,6 @@ class CombinationEntry:
     (unfavourable, favourable), the second None where only one was given."""
 
     place: str
-    line: int | None
     name: str
     kind: CombinationKind
     factors: Mapping[str, tuple[float, float | None]]
@@ -175,6 +169,8 @@ class Brief:
     schedule: Path | None
     property_mapping: Mapping[ReinforcementField, str]
     """Field to "Set.Property"."""
+    lines: Mapping[str, int]
+    """Line of every table and key: "loads[3].at" to 46"""
     cases: tuple[Case, ...]
     """As declared, without ``self``."""
     loads: tuple[LoadEntry, ...] = ()
@@ -193,8 +189,8 @@ class Brief:
     def where(self, entry: Entry, key: str = "") -> str:
         """File, place and line of an entry, for an error."""
         place = f"{entry.place}.{key}" if key else entry.place
-        line = "" if entry.line is None else f" (line {entry.line})"
-        return f"{self.file_name}: {place}{line}"
+        line = self.lines.get(place, self.lines.get(entry.place))
+        return f"{self.file_name}: {place}" + ("" if line is None else f" (line {line})")
 
 
 @dataclass(frozen=True, slots=True)

@@ -6,9 +6,12 @@ import re
 from collections.abc import Iterator
 from difflib import get_close_matches
 
+from ifccheck.units import clipped
+
 Path = tuple[str | int, ...]
 
 _PART = r"(?:[A-Za-z0-9_-]+|\"[^\"\n]*\"|'[^'\n]*')"
+_BARE_KEY = re.compile(r"[A-Za-z0-9_-]+")
 _KEY = rf"{_PART}(?:\s*\.\s*{_PART})*"
 _ARRAY_TABLE = re.compile(rf"\s*\[\[\s*({_KEY})\s*\]\]")
 _TABLE = re.compile(rf"\s*\[\s*({_KEY})\s*\]")
@@ -31,6 +34,7 @@ def lines_of(text: str) -> dict[Path, int]:
             name = _parts(found[1])
             counts[name] = counts.get(name, -1) + 1
             table = (*name, counts[name])
+            lines.setdefault(name, number)
             lines.setdefault(table, number)
         elif found := _TABLE.match(line):
             table = _parts(found[1])
@@ -42,15 +46,26 @@ def lines_of(text: str) -> dict[Path, int]:
 
 def _statements(text: str) -> Iterator[tuple[int, str]]:
     """Lines that begin a statement: not inside a string, nor inside a value over many lines."""
-    blanked = _STRINGS.sub(_blank, text)
+    inside = _inside_strings(text)
+    blanked = _STRINGS.sub(_blank, text).split("\n")
     depth = 0
-    originals = text.split("\n")
-    for number, (line, original) in enumerate(zip(blanked.split("\n"), originals, strict=True), 1):
-        if depth == 0:
+    for number, (line, original) in enumerate(zip(blanked, text.split("\n"), strict=True), 1):
+        begins = depth == 0 and number not in inside
+        if begins:
             yield number, original
-        if depth or "=" in line:
-            value = line if depth else line.split("=", 1)[1]
+        if not begins or "=" in line:
+            value = line.split("=", 1)[1] if begins else line
             depth += sum(map(value.count, "[{")) - sum(map(value.count, "]}"))
+
+
+def _inside_strings(text: str) -> set[int]:
+    """Numbers of the lines at whose beginning a string is open."""
+    numbers: set[int] = set()
+    for found in _STRINGS.finditer(text):
+        if "\n" in found[0]:
+            first = text.count("\n", 0, found.start()) + 1
+            numbers.update(range(first + 1, first + found[0].count("\n") + 1))
+    return numbers
 
 
 def _blank(found: re.Match[str]) -> str:
@@ -80,7 +95,8 @@ def shown(path: Path) -> str:
         if isinstance(part, int):
             text += f"[{part + 1}]"
         else:
-            text += f".{part}" if text else part
+            key = part if _BARE_KEY.fullmatch(part) else clipped(part)
+            text += f".{key}" if text else key
     return text
 
 

@@ -6,6 +6,7 @@ from collections.abc import Iterator, Mapping, Sequence
 
 from ifccheck.brief.model import Brief, Entry, ScheduleRow, Selection
 from ifccheck.errors import BriefError
+from ifccheck.units import clipped
 
 Found = Mapping[str, Sequence[str]]
 """Keys of the beams that each single mark or query reaches, by its place."""
@@ -48,6 +49,6 @@ def check_reached(brief: Brief, found: Sequence[Found]) -> None:
                 key = "where" if part.where is not None else "beams"
                 said = part.where if part.where is not None else (part.beams or ("",))[0]
                 raise BriefError(
-                    f"{brief.where(entry, key)}: '{said}' reaches no beam: correct it, or write"
-                    " optional = true"
+                    f"{brief.where(entry, key)}: {clipped(said, 120)} reaches no beam: correct it,"
+                    " or write optional = true"
                 )

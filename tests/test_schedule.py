@@ -1,0 +1,293 @@
+"""The beam schedule: CSV and XLSX read alike, faults told with their row, zones on beams."""
+
+import zipfile
+from dataclasses import replace
+from pathlib import Path
+
+import openpyxl
+import pytest
+
+from ifccheck.beam import Axis, Beam, Remark
+from ifccheck.brief.apply import schedule_remarks, with_schedule
+from ifccheck.brief.model import Selection
+from ifccheck.brief.schedule import read_schedule
+from ifccheck.errors import BriefError
+from ifccheck.notation import parse_bars, parse_stirrups
+
+HEADER = ["Mark", "From", "To", "Top", "Bottom", "Side", "Stirrups", "Cover", "Bar yield"]
+ROWS = [
+    ["B-204", "", "", "2-20M", "3-25M + 2-20M", "none", "", "40 mm", "400 MPa"],
+    ["B-204", "", "1.5 m", "", "", "", "2 legs 10M @ 150", "", ""],
+    ["B-3*, B-4", "50 %", "100 %", "", "4#8", "", "none", "1.5 in", "60 ksi"],
+]
+
+
+@pytest.fixture
+def write(tmp_path):
+    """Write a table as CSV or XLSX."""
+
+    def write(rows, suffix=".csv", separator=","):
+        path = Path(tmp_path) / f"beams{suffix}"
+        if suffix == ".xlsx":
+            book = openpyxl.Workbook()
+            for row in rows:
+                book.active.append(row)
+            book.save(path)
+            book.close()
+        else:
+            quoted = [[f'"{c}"' if separator in c else c for c in row] for row in rows]
+            path.write_text("\n".join(separator.join(row) for row in quoted) + "\n", "utf-8")
+        return path
+
+    return write
+
+
+@pytest.mark.parametrize(
+    ("suffix", "separator"), [(".csv", ","), (".csv", ";"), (".csv", "\t"), (".xlsx", "")]
+)
+def test_a_schedule_is_read(write, suffix, separator):
+    first, second, third = read_schedule(write([HEADER, *ROWS], suffix, separator))
+    assert first.place == f"beams{suffix} row 2"
+    assert first.selection == Selection(beams=("B-204",))
+    assert (first.start, first.end) == (None, None)
+    assert first.top == parse_bars("2-20M")
+    assert first.bottom == parse_bars("3-25M + 2-20M")
+    assert first.side == ()
+    assert (first.stirrups, first.no_stirrups) == (None, False)
+    assert (first.cover, first.bar_yield, first.stirrup_yield) == (40.0, 400.0, None)
+    assert second.end.value == 1500.0
+    assert (second.top, second.bottom, second.side) == (None, None, None)
+    assert second.stirrups == parse_stirrups("2 legs 10M @ 150")
+    assert third.selection == Selection(beams=("B-3*", "B-4"))
+    assert (third.start.value, third.start.relative) == (0.5, True)
+    assert (third.stirrups, third.no_stirrups) == (None, True)
+    assert third.cover == pytest.approx(38.1)
+    assert third.bar_yield == pytest.approx(413.685, abs=1e-3)  # 60 ksi
+
+
+def test_a_byte_order_mark_blank_rows_and_order_of_columns_do_not_matter(tmp_path):
+    path = Path(tmp_path) / "beams.csv"
+    path.write_bytes("\ufeffBOTTOM,mark\r\n,\r\n3-25M,B-1\r\n\r\n".encode())
+    (row,) = read_schedule(path)
+    assert (row.place, row.bottom) == ("beams.csv row 3", parse_bars("3-25M"))
+
+
+def test_numbers_as_marks_are_text(write):
+    (row,) = read_schedule(write([["mark", "bottom"], [204, "3-25M"]], ".xlsx"))
+    assert row.selection.beams == ("204",)
+
+
+def test_formulas_are_plain_text_and_never_evaluated(write):
+    path = write([["mark", "bottom"], ["B-1", '="3-"&"25M"']], ".xlsx")
+    with pytest.raises(BriefError, match=r"^beams.xlsx row 2 bottom: '=\"3-\"&\"25M\"' is not bar"):
+        read_schedule(path)
+
+
+FAULTS = [
+    ([], "beams.csv: is empty"),
+    ([["mark", "botom"], ["B-1", "3-25M"]], "row 1: unknown column 'botom': did you mean bottom?"),
+    ([["mark", ""], ["B-1", ""]], "row 1: column without name"),
+    ([["bottom"], ["3-25M"]], "row 1: there is no column 'mark'"),
+    ([["mark", "mark"], ["B-1", "B-1"]], "row 1: column 'mark' is given twice"),
+    ([["mark", "bottom"], ["", "3-25M"]], "beams.csv row 2 mark: is empty"),
+    ([["mark", "bottom"], ["B-1,", "3-25M"]], "beams.csv row 2 mark: is empty"),
+    ([["mark", "bottom"], ["B-1", ""]], "beams.csv row 2: states nothing"),
+    ([["mark", "bottom"], ["B-1", "3-25M", "x"]], "beams.csv row 2: has more cells than"),
+    ([["mark", "bottom"], ["B-1", "3-25"]], "beams.csv row 2 bottom: '3-25' can be read in"),
+    ([["mark", "bottom"], ["B-1", "3-26M"]], "row 2 bottom: '26M' is no standard bar"),
+    ([["mark", "bottom"], ["B-1", "-3-25M"]], "row 2 bottom: '-3-25M' has -3 bars"),
+    ([["mark", "stirrups"], ["B-1", "10M @ -250"]], "row 2 stirrups: '10M @ -250' has a spacing"),
+    ([["mark", "cover"], ["B-1", "40"]], "beams.csv row 2 cover: '40' has no unit"),
+    ([["mark", "cover"], ["B-1", "40 m"]], "row 2 cover: '40 m' is not plausible"),
+    ([["mark", "cover"], ["B-1", "40 kN"]], "row 2 cover: '40 kN' is a force"),
+    ([["mark", "bar_yield"], ["B-1", "4,00 MPa"]], "row 2 bar_yield: '4,00 MPa' has a comma"),
+    ([["mark", "top", "from"], ["B-1", "none", "-1 m"]], "row 2 from: '-1 m' is negative"),
+    ([["mark", "top", "to"], ["B-1", "none", "3"]], "row 2 to: '3' has no unit"),
+    (
+        [["mark", "top", "from", "to"], ["B-1", "none", "3 m", "2 m"]],
+        "row 2 to: '2 m' is not beyond from = '3 m'",
+    ),
+]
+
+
+@pytest.mark.parametrize(("rows", "told"), FAULTS)
+def test_a_fault_is_told_with_file_row_and_column(write, rows, told):
+    with pytest.raises(BriefError) as caught:
+        read_schedule(write(rows))
+    assert told in str(caught.value)
+    assert str(caught.value).startswith("beams.csv")
+    assert "\n" not in str(caught.value)
+
+
+def test_files_that_are_no_tables_are_told(tmp_path):
+    folder = Path(tmp_path)
+    (folder / "beams.csv").write_bytes("mark,bottom\nTräger,3-25M\n".encode("latin-1"))
+    with pytest.raises(BriefError, match=r"^beams.csv: not UTF-8 at line 2, column 3"):
+        read_schedule(folder / "beams.csv")
+    (folder / "open.csv").write_text('mark,bottom\n"B-1,3-25M\n')
+    with pytest.raises(BriefError, match=r"^open.csv row 2: not CSV"):
+        read_schedule(folder / "open.csv")
+    (folder / "beams.xlsx").write_text("mark,bottom\n")
+    with pytest.raises(BriefError, match=r"^beams.xlsx: not an XLSX workbook"):
+        read_schedule(folder / "beams.xlsx")
+    with zipfile.ZipFile(folder / "other.xlsx", "w") as archive:
+        archive.writestr("readme.txt", "no workbook")
+    with pytest.raises(BriefError, match=r"^other.xlsx: not a readable XLSX workbook"):
+        read_schedule(folder / "other.xlsx")
+    with pytest.raises(BriefError, match=r"^none.csv: there is no file"):
+        read_schedule(folder / "none.csv")
+
+
+def test_hostile_workbooks_are_refused(tmp_path, write):
+    good = write([["mark", "bottom"], ["B-1", "3-25M"]], ".xlsx")
+    with zipfile.ZipFile(good) as archive:
+        parts = {name: archive.read(name) for name in archive.namelist()}
+    entities = Path(tmp_path) / "entities.xlsx"
+    with zipfile.ZipFile(entities, "w") as archive:
+        for name, content in parts.items():
+            archive.writestr(name, content.replace(b"<worksheet", b"<!DOCTYPE x><worksheet", 1))
+    with pytest.raises(BriefError, match="declares entities"):
+        read_schedule(entities)
+    bomb = Path(tmp_path) / "bomb.xlsx"
+    with zipfile.ZipFile(bomb, "w", zipfile.ZIP_DEFLATED) as archive:
+        for name, content in parts.items():
+            archive.writestr(name, content)
+        archive.writestr("xl/media/zeros.bin", bytes(20_000_000))
+    with pytest.raises(BriefError, match="too many for a table"):
+        read_schedule(bomb)
+
+
+def test_of_several_sheets_the_one_named_schedule_is_read(tmp_path):
+    path = Path(tmp_path) / "beams.xlsx"
+    book = openpyxl.Workbook()
+    book.active.append(["notes"])
+    book.create_sheet("Sheet 2").append(["mark", "bottom"])
+    book.save(path)
+    with pytest.raises(BriefError, match="has 2 sheets: keep one, or name the one"):
+        read_schedule(path)
+    schedule = book.create_sheet("Schedule")
+    schedule.append(["mark", "bottom"])
+    schedule.append(["B-1", "3-25M"])
+    book.save(path)
+    assert read_schedule(path)[0].bottom == parse_bars("3-25M")
+
+
+# --- zones on beams -------------------------------------------------------------------------
+
+
+def beam(key, length=6000.0):
+    axis = Axis((0.0, 0.0, 0.0), (1.0, 0.0, 0.0), (0.0, 1.0, 0.0), (0.0, 0.0, 1.0), length)
+    return Beam(
+        key=key,
+        guid=key,
+        ordinal=0,
+        step_id=1,
+        model="hall",
+        ifc_class="IfcBeam",
+        name=key,
+        tag="",
+        type_name="",
+        storey="Level 1",
+        axis=axis,
+        runs=(),
+        material="",
+        concrete_strength=None,
+        concrete_density=None,
+        cover=None,
+    )
+
+
+def laid(rows, **reached):
+    matches = {row.place: reached.get(f"row{n}", ("B-1",)) for n, row in enumerate(rows, 2)}
+    return with_schedule(rows, matches, {"B-1": beam("B-1"), "B-2": beam("B-2")})
+
+
+def test_rows_become_described_zones(write):
+    rows = read_schedule(write([HEADER, *ROWS]))
+    beams = laid(rows, row4=("B-1", "B-2"), row2=("B-1",), row3=())
+    (one,), (other,) = beams["B-1"].reinforcement, beams["B-2"].reinforcement
+    assert one.source == "schedule"
+    first, third = one.zones
+    assert (first.start, first.end, first.origin) == (None, None, "beams.csv row 2")
+    assert (first.bottom, first.side) == (parse_bars("3-25M + 2-20M"), ())
+    assert (third.start, third.end, third.no_stirrups) == (3000.0, 6000.0, True)
+    assert other.zones == (third,)
+    assert other.reasons == ()
+
+
+def test_a_beam_without_rows_is_left_as_it_is(write):
+    rows = read_schedule(write([HEADER, *ROWS]))
+    assert laid(rows)["B-2"] == beam("B-2")
+
+
+@pytest.mark.parametrize(
+    ("one", "other", "told"),
+    [
+        (["", "", "3-25M", ""], ["2 m", "4 m", "3-25M", ""], "both give bottom between 2.00 m and"),
+        (["", "", "", "none"], ["", "", "", "10M @ 200"], "both give stirrups between 0 m and"),
+        (["", "50 %", "none", ""], ["2.9 m", "", "3-25M", ""], "between 2.90 m and 3.00 m"),
+    ],
+)
+def test_rows_that_contradict_each_other_are_a_reason(write, one, other, told):
+    header = ["mark", "from", "to", "bottom", "stirrups"]
+    rows = read_schedule(write([header, ["B-1", *one], ["B-1", *other]]))
+    (reason,) = laid(rows)["B-1"].reinforcement[0].reasons
+    assert reason.text.startswith("beams.csv row 2 and beams.csv row 3 both give")
+    assert told in reason.text
+    assert reason.blocking
+
+
+@pytest.mark.parametrize(
+    ("one", "other"),
+    [
+        (["", "50 %", "3-25M", "", ""], ["3 m", "", "2-25M", "", ""]),
+        (["", "", "3-25M", "", ""], ["", "1 m", "", "10M @ 100", ""]),
+        (["", "", "3-25M", "", "40 mm"], ["", "1 m", "", "10M @ 100", "40 mm"]),
+    ],
+)
+def test_rows_that_agree_are_no_reason(write, one, other):
+    header = ["mark", "from", "to", "bottom", "stirrups", "cover"]
+    rows = read_schedule(write([header, ["B-1", *one], ["B-1", *other]]))
+    assert laid(rows)["B-1"].reinforcement[0].reasons == ()
+
+
+def test_rows_of_unequal_cover_are_a_reason(write):
+    rows = read_schedule(write([["mark", "cover"], ["B-1", "40 mm"], ["B-1", "30 mm"]]))
+    (reason,) = laid(rows)["B-1"].reinforcement[0].reasons
+    assert "both give cover" in reason.text
+
+
+def test_a_zone_beyond_the_beam_is_a_reason(write):
+    header = ["mark", "from", "to", "bottom"]
+    rows = read_schedule(write([header, ["B-1", "1 m", "8 m", "3-25M"]]))
+    (reason,) = laid(rows)["B-1"].reinforcement[0].reasons
+    assert reason.text == "beams.csv row 2: reaches to 8.00 m, beyond the beam's end"
+    rows = read_schedule(write([header, ["B-1", "50 %", "2 m", "3-25M"]]))
+    (reason,) = laid(rows)["B-1"].reinforcement[0].reasons
+    assert reason.text == "beams.csv row 2: the zone has no length on this beam"
+    rows = read_schedule(write([header, ["B-1", "1 m", "6000.8 mm", "3-25M"]]))
+    (described,) = laid(rows)["B-1"].reinforcement
+    assert described.reasons == ()
+    assert described.zones[0].end == 6000.0
+
+
+def test_a_schedule_on_a_beam_of_unread_body_keeps_its_rows(write):
+    rows = read_schedule(write([HEADER, *ROWS]))
+    unread = replace(beam("B-1"), axis=None)
+    laid_on = with_schedule(rows, {row.place: ("B-1",) for row in rows}, {"B-1": unread})
+    assert len(laid_on["B-1"].reinforcement[0].zones) == 3
+
+
+def test_marks_that_no_model_knows_are_remarks(write):
+    rows = read_schedule(write([HEADER, ROWS[2]]))
+    found = {"beams.csv row 2.beams[1]": ("B-31",), "beams.csv row 2.beams[2]": ()}
+    assert schedule_remarks(rows, [found]) == (
+        Remark(
+            None,
+            "schedule",
+            "beams.csv row 2: no beam is marked B-4, the row is not used",
+            "doubt",
+        ),
+    )
+    elsewhere = {"beams.csv row 2.beams[1]": (), "beams.csv row 2.beams[2]": ("B-4",)}
+    assert schedule_remarks(rows, [found, elsewhere]) == ()
