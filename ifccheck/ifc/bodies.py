@@ -7,11 +7,11 @@ from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING
 
 import numpy as np
-import numpy.typing as npt
 
 from ifccheck.ifc.clips import Cloud, Cut, Vector, read_cut
 from ifccheck.ifc.entity import Entity, UnreadableError, get, several
-from ifccheck.ifc.placements import IDENTITY, Matrix, unit
+from ifccheck.ifc.placements import IDENTITY, Matrix, cross_product, ratios
+from ifccheck.ifc.profile_curves import Points
 from ifccheck.ifc.profiles import Profile, Profiles
 
 if TYPE_CHECKING:
@@ -45,6 +45,9 @@ NOT_READ_YET = {
     "IfcSectionedSolidHorizontal": "sectioned solid",
 }
 
+RIGID = 1e-9
+"""How far from unit length and square an axis may be by rounding."""
+
 Placed = tuple[Entity, Matrix]
 """A representation item and the matrix that carries it into the building."""
 
@@ -55,24 +58,28 @@ class Prism:
 
     profile: Profile
     matrix: Matrix
-    """From the profile's plane into the building; it may scale and mirror."""
+    """Rigid, from the profile's plane into the building; x and y are square unit vectors."""
     along: Vector
     cuts: tuple[Cut, ...] = ()
 
-    def faces(self) -> list[Cloud]:
-        """Return the corners of each ring of the face that the extrusion starts from."""
-        turn, shift = self.matrix[:3, :2], self.matrix[:3, 3]
-        return [points @ turn.T + shift for points in self.profile.rings]
+    def face(self) -> Cloud:
+        """Return the corners of the outer ring of the face that the extrusion starts from."""
+        return self.placed(self.profile.rings[0])
+
+    def placed(self, points: Points) -> Cloud:
+        """Return points of the profile's plane in the building."""
+        return np.asarray(points @ self.matrix[:3, :2].T + self.matrix[:3, 3])
 
     def corners(self) -> Cloud:
         """Return the corners of the body before it is cut."""
-        face = self.faces()[0]
-        return np.vstack((face, face + self.along))
+        face = self.face()
+        return np.concatenate((face, face + self.along))
 
     @property
-    def normal(self) -> npt.NDArray[np.float64]:
-        """Normal of the profile's plane, not of unit length."""
-        return np.cross(self.matrix[:3, 0], self.matrix[:3, 1])
+    def normal(self) -> Vector:
+        """Unit normal of the profile's plane, to the right hand of its x and y."""
+        x, y = self.matrix[:3, 0].tolist(), self.matrix[:3, 1].tolist()
+        return np.array(cross_product(x, y))
 
 
 def body_items(context: Context, product: Entity) -> list[Placed]:
@@ -137,5 +144,21 @@ def extrusion(context: Context, profiles: Profiles, item: Entity, matrix: Matrix
     if not (np.isfinite(depth) and depth > 0.0):
         raise UnreadableError(f"body is extruded by {depth:g} mm")
     whole = matrix if position is IDENTITY else matrix @ position
-    along = whole[:3, :3] @ (unit(item[2][0]) * depth)
-    return Prism(profile, whole, along)
+    along = whole[:3, :3] @ np.array([ratio * depth for ratio in ratios(item[2][0])])
+    return _unscaled(profile, whole, along)
+
+
+def _unscaled(profile: Profile, matrix: Matrix, along: Vector) -> Prism:
+    """The prism of a profile whose plane may be scaled, mirrored or skewed by a mapped item."""
+    x, y = matrix[:3, 0], matrix[:3, 1]
+    square = abs(x @ y) < RIGID and abs(x @ x - 1.0) < RIGID and abs(y @ y - 1.0) < RIGID
+    if square:
+        return Prism(profile, matrix, along)
+    first = x / np.sqrt(x @ x)
+    second = y - (y @ first) * first
+    second /= np.sqrt(second @ second)
+    rigid = matrix.copy()
+    rigid[:3, 0], rigid[:3, 1] = first, second
+    shape = np.eye(4)
+    shape[:2, :2] = ((x @ first, y @ first), (0.0, y @ second))
+    return Prism(profile.moved(shape), rigid, along)

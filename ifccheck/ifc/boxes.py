@@ -12,7 +12,7 @@ from ifccheck.beam import Box
 from ifccheck.ifc.bodies import body_items, extrusion
 from ifccheck.ifc.clips import Cloud, left_over, read_cut
 from ifccheck.ifc.entity import Entity, UnreadableError, get
-from ifccheck.ifc.placements import Matrix
+from ifccheck.ifc.placements import Matrix, cross_product
 from ifccheck.ifc.profiles import Profiles
 
 if TYPE_CHECKING:
@@ -85,11 +85,10 @@ class Boxes:
         end_area = get(item, "EndSweptArea")
         if end_area is not None:
             end = replace(prism, profile=self._profiles.of(end_area))
-            cloud = np.vstack((cloud, end.corners()))
-        face = prism.faces()[0]
-        edges = np.roll(face, -1, axis=0) - face
-        longest = edges[int((edges * edges).sum(axis=1).argmax())]
-        return cloud, _axes(longest, prism.normal)
+            cloud = np.concatenate((cloud, end.corners()))
+        side = np.array(prism.profile.longest_side)
+        x, z = prism.matrix[:3, :2] @ side, prism.normal
+        return cloud, np.array((x, cross_product(z.tolist(), x.tolist()), z))
 
     def _faceted(self, item: Entity) -> Cloud:
         step_id = item.id()
@@ -137,20 +136,14 @@ def box_round(cloud: Cloud, axes: Matrix) -> Box:
     """Return the box along three axes (rows) round points in the building [mm]."""
     local = cloud @ axes.T
     low, high = local.min(axis=0), local.max(axis=0)
-    x, y, z = (_vector(row) for row in axes)
-    return Box(_vector(((low + high) / 2.0) @ axes), (x, y, z), _vector((high - low) / 2.0))
-
-
-def _axes(along: Cloud, normal: Cloud) -> Matrix:
-    x = along / np.sqrt(along @ along)
-    z = normal / np.sqrt(normal @ normal)
-    return np.array((x, np.cross(z, x), z))
+    x, y, z = (_triple(row) for row in axes)
+    return Box(_triple(((low + high) / 2.0) @ axes), (x, y, z), _triple((high - low) / 2.0))
 
 
 def _rigid_axes(matrix: Matrix) -> Matrix:
     return np.ascontiguousarray(matrix[:3, :3].T)
 
 
-def _vector(values: Cloud) -> tuple[float, float, float]:
-    x, y, z = np.round(values, 9).tolist()
-    return x, y, z
+def _triple(values: Cloud) -> tuple[float, float, float]:
+    x, y, z = values.tolist()
+    return round(x, 9), round(y, 9), round(z, 9)

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from typing import Any
 
 import numpy as np
@@ -10,6 +11,7 @@ import numpy.typing as npt
 from ifccheck.ifc.entity import Entity, UnreadableError, get, label, several
 
 Matrix = npt.NDArray[np.float64]
+Direction = tuple[float, float, float]
 
 IDENTITY: Matrix = np.eye(4)
 IDENTITY.flags.writeable = False
@@ -87,7 +89,7 @@ class Placements:
             raise UnreadableError(f"{label(position)} is no axis placement that is read")
         if axis is None and reference is None and not any(origin):
             return IDENTITY
-        matrix = rigid(_ratios(axis), _ratios(reference))
+        matrix = rigid(_given(axis), _given(reference))
         for row, coordinate in enumerate(origin):
             matrix[row, 3] = coordinate * self.scale
         return matrix
@@ -96,12 +98,14 @@ class Placements:
         """Return a Cartesian transformation operator, which may scale and mirror [mm]."""
         flat = operator.is_a("IfcCartesianTransformationOperator2D")
         first, second, third = (get(operator, name) for name in ("Axis1", "Axis2", "Axis3"))
-        matrix = rigid(_ratios(third), _ratios(first))
+        matrix = rigid(_given(third), _given(first))
         if first is None and flat and second is not None:
             along = unit(second[0])
             matrix[:3, 0] = (along[1], -along[0], 0.0)
             matrix[:3, 1] = along
-        elif matrix[:3, 1] @ (unit(second[0]) if second is not None else (0.0, 1.0, 0.0)) < 0:
+        elif (
+            matrix[:3, 1] @ np.array(unit(second[0]) if second is not None else (0.0, 1.0, 0.0)) < 0
+        ):
             matrix[:3, 1] = -matrix[:3, 1]
         matrix[:3, :3] *= _scales(operator)
         for row, coordinate in enumerate(get(operator, "LocalOrigin")[0]):
@@ -155,7 +159,7 @@ class Placements:
         return line * self.scale
 
 
-def _ratios(direction: Entity | None) -> Any:
+def _given(direction: Entity | None) -> Any:
     return None if direction is None else direction[0]
 
 
@@ -174,32 +178,45 @@ def rigid(axis: Any, reference: Any) -> Matrix:
 
     Missing or parallel directions are replaced as the standard ISO 10303-42 lays down.
     """
-    z = unit(axis) if axis is not None else np.array((0.0, 0.0, 1.0))
-    x = unit(reference) if reference is not None else np.array((1.0, 0.0, 0.0))
-    x = x - (x @ z) * z
-    if x @ x < PARALLEL**2:
-        x = np.array((1.0, 0.0, 0.0)) if abs(z[0]) < 0.9 else np.array((0.0, 1.0, 0.0))
-        x = x - (x @ z) * z
-    x /= np.sqrt(x @ x)
-    matrix = np.eye(4)
-    matrix[:3, 0] = x
-    matrix[:3, 1] = (
-        z[1] * x[2] - z[2] * x[1],
-        z[2] * x[0] - z[0] * x[2],
-        z[0] * x[1] - z[1] * x[0],
+    z = ratios(axis) if axis is not None else (0.0, 0.0, 1.0)
+    x = _square_to(z, ratios(reference) if reference is not None else (1.0, 0.0, 0.0))
+    if x is None:
+        x = _square_to(z, (1.0, 0.0, 0.0) if abs(z[0]) < 0.9 else (0.0, 1.0, 0.0))
+    assert x is not None  # one of two square directions is never parallel to z
+    y = cross_product(z, x)
+    rows = zip(x, y, z, (0.0, 0.0, 0.0), strict=True)
+    return np.array([*rows, (0.0, 0.0, 0.0, 1.0)])
+
+
+def _square_to(z: Direction, direction: Direction) -> Direction | None:
+    """The part of a direction square to z as a unit vector, None where it is parallel."""
+    along = direction[0] * z[0] + direction[1] * z[1] + direction[2] * z[2]
+    x, y, height = (value - along * part for value, part in zip(direction, z, strict=True))
+    length = math.sqrt(x * x + y * y + height * height)
+    return None if length < PARALLEL else (x / length, y / length, height / length)
+
+
+def cross_product(first: Direction, second: Direction) -> Direction:
+    """Return the vector square to two others."""
+    return (
+        first[1] * second[2] - first[2] * second[1],
+        first[2] * second[0] - first[0] * second[2],
+        first[0] * second[1] - first[1] * second[0],
     )
-    matrix[:3, 2] = z
-    return matrix
 
 
 def unit(direction: Any) -> npt.NDArray[np.float64]:
     """Return a direction of two or three ratios as a unit vector in space."""
-    vector = np.zeros(3)
-    vector[: len(direction)] = direction
-    length = float(np.sqrt(vector @ vector))
-    if not np.isfinite(length) or length == 0.0:
+    return np.array(ratios(direction))
+
+
+def ratios(direction: Any) -> Direction:
+    """Return a direction of two or three ratios as the parts of a unit vector."""
+    x, y, z = direction if len(direction) == 3 else (*direction, 0.0)
+    length = math.sqrt(x * x + y * y + z * z)
+    if not math.isfinite(length) or length == 0.0:
         raise UnreadableError("a direction of no length")
-    return vector / length
+    return x / length, y / length, z / length
 
 
 def cross(first: Matrix, second: Matrix, offsets: list[float]) -> tuple[float, float]:

@@ -101,7 +101,7 @@ def clean(places: Sequence[Place]) -> Points:
     points: Points = np.asarray(places, dtype=float).reshape(-1, 2)
     if not np.isfinite(points).all():
         raise UnreadableError("an outline with coordinates that are no numbers")
-    keep = np.abs(points - np.roll(points, 1, axis=0)).max(axis=1) > SAME_POINT
+    keep = np.abs(points - before(points)).max(axis=1) > SAME_POINT
     points = points[keep]
     if len(points) < 3:
         raise UnreadableError("an outline with fewer than three corners")
@@ -110,8 +110,18 @@ def clean(places: Sequence[Place]) -> Points:
 
 def signed_area(points: Points) -> float:
     """Return the area of a polygon [mm2], positive where it runs anticlockwise."""
-    x, y = points[:, 0] - points[0, 0], points[:, 1] - points[0, 1]
-    return float(0.5 * (x @ np.roll(y, -1) - y @ np.roll(x, -1)))
+    x, y = (points - points[0]).T
+    return float(0.5 * (x @ after(y) - y @ after(x)))
+
+
+def after(points: Points) -> Points:
+    """Return for each point of a closed polygon the next one (np.roll, several times faster)."""
+    return np.concatenate((points[1:], points[:1]))
+
+
+def before(points: Points) -> Points:
+    """Return for each point of a closed polygon the one before it."""
+    return np.concatenate((points[-1:], points[:-1]))
 
 
 def read_pieces(curve: Entity, placements: Placements) -> list[Piece]:

@@ -4,18 +4,23 @@ from __future__ import annotations
 
 import math
 from collections.abc import Callable, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, field
+from functools import cached_property
 
 import numpy as np
+import numpy.typing as npt
 
+from ifccheck.beam import Outline
 from ifccheck.ifc.entity import Entity, UnreadableError, get, several, text
-from ifccheck.ifc.placements import Matrix, Placements
+from ifccheck.ifc.placements import IDENTITY, Matrix, Placements
 from ifccheck.ifc.profile_curves import (
     Arc,
     Corner,
     Piece,
     Place,
     Points,
+    after,
+    before,
     read_pieces,
     ring,
     signed_area,
@@ -26,38 +31,145 @@ Vertex = tuple[float, float, float]
 
 
 @dataclass(frozen=True)
+class Elevation:
+    """A convex profile with two parallel long sides: rows of the corners that start them."""
+
+    corners: Points
+    """The corners at which the profile turns."""
+    first: int
+    """Row of the corner that starts the longest side."""
+    second: int
+    """Row of the corner that starts the side opposite."""
+    length: float
+    """Length of the longest side [mm]."""
+    depth: float
+    """Distance between the two sides [mm]."""
+
+
+@dataclass(frozen=True)
+class Turned:
+    """A profile turned into the axes of a member: y to the left, z up, about its own origin."""
+
+    rings: tuple[Points, ...]
+    centroid: Place
+    low: Place
+    """Least y and z of the outer ring [mm]."""
+    high: Place
+    outline: Outline
+
+
+@dataclass(frozen=True, eq=False)
 class Profile:
     """A plane figure: the outer ring anticlockwise, then voids clockwise."""
 
     rings: tuple[Points, ...]
     name: str = ""
+    _turned: dict[tuple[float, ...], Turned] = field(default_factory=dict, repr=False)
 
-    @property
+    @cached_property
     def area(self) -> float:
         """Area [mm2]."""
         return sum(signed_area(points) for points in self.rings)
 
-    @property
+    @cached_property
     def centroid(self) -> Place:
         """Centroid of the area [mm]."""
         base = self.rings[0][0]
         area = moment_x = moment_y = 0.0
         for points in self.rings:
             x, y = (points - base).T
-            next_x, next_y = np.roll(x, -1), np.roll(y, -1)
+            next_x, next_y = after(x), after(y)
             twice = x * next_y - next_x * y
-            area += twice.sum() / 2.0
-            moment_x += ((x + next_x) @ twice) / 6.0
-            moment_y += ((y + next_y) @ twice) / 6.0
+            area += float(twice.sum()) / 2.0
+            moment_x += float((x + next_x) @ twice) / 6.0
+            moment_y += float((y + next_y) @ twice) / 6.0
         return float(base[0] + moment_x / area), float(base[1] + moment_y / area)
+
+    @cached_property
+    def diameter(self) -> float:
+        """Greatest distance between two corners [mm]."""
+        points = self.rings[0]
+        apart = points[:, None, :] - points[None, :, :]
+        return float(np.sqrt((apart * apart).sum(axis=2).max()))
+
+    @cached_property
+    def longest_side(self) -> Place:
+        """Direction of the longest side, a unit vector."""
+        sides = after(self.rings[0]) - self.rings[0]
+        x, y = sides[int((sides * sides).sum(axis=1).argmax())].tolist()
+        length = math.hypot(x, y)
+        return x / length, y / length
+
+    @cached_property
+    def elevation(self) -> Elevation | None:
+        """The profile as an elevation, None where it has no two parallel long sides."""
+        return as_elevation(self.rings[0]) if len(self.rings) == 1 else None
+
+    def turned(self, turn: Matrix) -> Turned:
+        """Return the profile in other axes; ``turn`` is orthogonal or a projection (2, 2)."""
+        key = tuple(round(value, 9) for value in turn.ravel().tolist())
+        if key not in self._turned:
+            self._turned[key] = self._turn(np.array(key).reshape(2, 2))
+        return self._turned[key]
+
+    def _turn(self, turn: Matrix) -> Turned:
+        moved = self.moved(np.block([[turn, np.zeros((2, 2))], [np.zeros((2, 2)), np.eye(2)]]))
+        low, high = moved.rings[0].min(axis=0).tolist(), moved.rings[0].max(axis=0).tolist()
+        middle = np.array(((low[0] + high[0]) / 2.0, low[1]))
+        rings = tuple(
+            tuple((y, z) for y, z in np.round(points - middle, 6).tolist())
+            for points in moved.rings
+        )
+        outline = Outline(rings, self.name)
+        return Turned(moved.rings, moved.centroid, (low[0], low[1]), (high[0], high[1]), outline)
 
     def moved(self, matrix: Matrix) -> Profile:
         """Return the profile after a transformation in its plane, mirrored ones included."""
         turn, shift = matrix[:2, :2], matrix[:2, 3]
         rings = tuple(points @ turn.T + shift for points in self.rings)
-        if np.linalg.det(turn) < 0:
+        if turn[0, 0] * turn[1, 1] < turn[0, 1] * turn[1, 0]:
             rings = tuple(points[::-1] for points in rings)
         return Profile(rings, self.name)
+
+
+MOST_CORNERS = 12
+"""An elevation with mitred ends has few corners."""
+
+
+def as_elevation(points: Points) -> Elevation | None:
+    """Return a convex polygon with two parallel long sides as an elevation, else None."""
+    corners = points[_turning(points)]
+    if not 4 <= len(corners) <= MOST_CORNERS or not _convex(corners):
+        return None
+    sides = after(corners) - corners
+    lengths = np.hypot(sides[:, 0], sides[:, 1])
+    first = int(lengths.argmax())
+    along = sides[first] / lengths[first]
+    cosines = sides @ along / lengths
+    sines = (sides[:, 1] * along[0] - sides[:, 0] * along[1]) / lengths
+    opposite = np.flatnonzero((cosines < 0.0) & (np.abs(sines) < 1e-5))
+    if len(opposite) != 1:
+        return None
+    second = int(opposite[0])
+    across = corners[second] - corners[first]
+    depth = abs(float(across[1] * along[0] - across[0] * along[1]))
+    return Elevation(corners, first, second, float(lengths[first]), depth)
+
+
+def _turns(points: Points) -> Points:
+    back, ahead = points - before(points), after(points) - points
+    return np.asarray(back[:, 0] * ahead[:, 1] - back[:, 1] * ahead[:, 0])
+
+
+def _turning(points: Points) -> npt.NDArray[np.bool_]:
+    """Which points of a polygon are corners."""
+    back, ahead = points - before(points), after(points) - points
+    size = np.hypot(*back.T) * np.hypot(*ahead.T)
+    return np.asarray(np.abs(_turns(points)) > 1e-7 * size)
+
+
+def _convex(points: Points) -> bool:
+    return bool((_turns(points) > 0.0).all())
 
 
 class Profiles:
@@ -116,7 +228,7 @@ class Profiles:
             for number, pieces in enumerate(FAMILIES[profile.is_a()](length))
         )
         matrix = self._placements.axes(get(profile, "Position"))
-        return Profile(rings).moved(matrix)
+        return Profile(rings) if matrix is IDENTITY else Profile(rings).moved(matrix)
 
     def _arbitrary(self, profile: Entity) -> Profile:
         curves = (get(profile, "OuterCurve"), *several(profile, "InnerCurves"))

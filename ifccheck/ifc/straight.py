@@ -14,15 +14,14 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 
 import numpy as np
-import numpy.typing as npt
 
 from ifccheck.beam import Axis, Box, Outline
 from ifccheck.ifc.bodies import Prism
 from ifccheck.ifc.clips import Vector, acts
 from ifccheck.ifc.entity import UnreadableError
-from ifccheck.ifc.placements import Matrix
-from ifccheck.ifc.profile_curves import Points, signed_area
-from ifccheck.ifc.profiles import Profile
+from ifccheck.ifc.placements import Matrix, cross_product
+from ifccheck.ifc.profile_curves import Corner, Points, ring
+from ifccheck.ifc.profiles import Elevation, Profile, Turned
 
 VERTICAL = math.cos(math.radians(10.0))
 """A member within ten degrees of the vertical stands."""
@@ -36,15 +35,10 @@ end is in doubt."""
 TIE = 1e-6
 VARIES = "section varies along the beam: not read yet"
 
-
-@dataclass(frozen=True)
-class Sweep:
-    """A ring set swept along a span vector, ended by planes: (point, outward normal)."""
-
-    rings: tuple[npt.NDArray[np.float64], ...]
-    """Points in space [mm]; their place along the span does not matter."""
-    span: Vector
-    ends: tuple[tuple[Vector, Vector], ...]
+Place3 = tuple[float, float, float]
+Plane = tuple[Vector, float]
+"""A plane that ends a member: outward normal in the member's axes, and its distance from the
+member's base point along that normal."""
 
 
 @dataclass(frozen=True)
@@ -60,171 +54,122 @@ class Straight:
     """Whether the depth near the start and the end is reduced by the slant."""
 
 
+@dataclass(frozen=True)
+class _Member:
+    """A section in the axes (rows of ``frame``) of a member, about a base point."""
+
+    frame: Matrix
+    base: Vector
+    section: Turned
+    planes: tuple[Plane, ...]
+
+
 def straighten(prism: Prism, placement: Matrix) -> Straight:
     """Return a prism as a straight member; raises UnreadableError where it is none."""
-    sweep = _sweep(prism)
-    frame = _frame(sweep.span, placement)
-    base = sweep.rings[0][0]
-    rings = tuple(
-        _oriented((ring - base) @ frame[1:].T, hole=n > 0) for n, ring in enumerate(sweep.rings)
-    )
-    planes = [(frame @ normal, float(normal @ (point - base))) for point, normal in sweep.ends]
-    planes += _cut_planes(prism, frame, base)
-    return _member(prism.profile.name, rings, planes, frame, base)
-
-
-def _sweep(prism: Prism) -> Sweep:
-    faces = prism.faces()
-    length = float(np.sqrt(prism.along @ prism.along))
-    elevation = _elevation(prism, faces)
+    length = math.sqrt(prism.along @ prism.along)
+    elevation = prism.profile.elevation
     if elevation is None:
-        size = _diameter(faces[0])
-        if length < size:
+        if length < prism.profile.diameter:
             raise UnreadableError(VARIES)
-        return _along(prism, faces)
-    sides, across = elevation
-    _require_clear(length, *sides)
-    return across if sides[0] > length else _along(prism, faces)
-
-
-def _along(prism: Prism, faces: Sequence[npt.NDArray[np.float64]]) -> Sweep:
-    normal = prism.normal
-    if normal @ prism.along < 0:
-        normal = -normal
-    start = faces[0][0]
-    ends = ((start, -normal), (start + prism.along, normal))
-    return Sweep(tuple(faces), prism.along, ends)
-
-
-def _elevation(
-    prism: Prism, faces: Sequence[npt.NDArray[np.float64]]
-) -> tuple[tuple[float, float], Sweep] | None:
-    """The profile taken as an elevation: its length and depth, and the body swept along it."""
-    if len(faces) > 1:
-        return None
-    flat = prism.profile.rings[0]
-    keep = _corner_rows(flat)
-    face = faces[0][keep]
-    if len(face) > 12 or not _convex(flat[keep]):
-        return None
-    edges = np.roll(face, -1, axis=0) - face
-    lengths = np.sqrt((edges * edges).sum(axis=1))
-    first = int(lengths.argmax())
-    direction = edges[first] / lengths[first]
-    opposite = [n for n in range(len(face)) if _opposed(edges[n] / lengths[n], direction)]
-    if len(opposite) != 1:
-        return None
-    second = opposite[0]
-    width = prism.along
-    near, far = face[first], face[second]
-    ring = np.array((near, near + width, far + width, far))
-    middle = face.mean(axis=0) + width / 2.0
-    ends = []
-    for number in range(len(face)):
-        if number not in (first, second):
-            normal = np.cross(edges[number], width)
-            outward = normal if normal @ (face[number] - middle) > 0 else -normal
-            ends.append((face[number], outward))
-    across = far - near
-    depth = float(np.sqrt(max(0.0, across @ across - (across @ direction) ** 2)))
-    return (float(lengths[first]), depth), Sweep((ring,), edges[first], tuple(ends))
-
-
-def _opposed(edge: Vector, direction: Vector) -> bool:
-    return float(edge @ direction) < 0.0 and _sine(edge, direction) < 1e-5
-
-
-def _sine(first: Vector, second: Vector) -> float:
-    normal = np.cross(first, second)
-    return float(np.sqrt(normal @ normal))
-
-
-def _corner_rows(points: Points) -> list[int]:
-    """Rows of a polygon at which it turns."""
-    back = points - np.roll(points, 1, axis=0)
-    ahead = np.roll(points, -1, axis=0) - points
-    turn = back[:, 0] * ahead[:, 1] - back[:, 1] * ahead[:, 0]
-    size = np.hypot(*back.T) * np.hypot(*ahead.T)
-    return np.flatnonzero(np.abs(turn) > 1e-7 * size).tolist()
-
-
-def _convex(points: Points) -> bool:
-    back = points - np.roll(points, 1, axis=0)
-    ahead = np.roll(points, -1, axis=0) - points
-    return bool((back[:, 0] * ahead[:, 1] - back[:, 1] * ahead[:, 0] > 0).all())
-
-
-def _diameter(points: npt.NDArray[np.float64]) -> float:
-    apart = points[:, None, :] - points[None, :, :]
-    return float(np.sqrt((apart * apart).sum(axis=2).max()))
+        member = _along_extrusion(prism, placement)
+    else:
+        _require_clear(length, elevation.length, elevation.depth)
+        if elevation.length > length:
+            member = _along_elevation(prism, elevation, placement)
+        else:
+            member = _along_extrusion(prism, placement)
+    return _finished(member, _cut_planes(prism, member))
 
 
 def _require_clear(length: float, side: float, depth: float) -> None:
     """Raise UnreadableError where nobody can tell along which side the beam spans."""
-    longest, *_ = ranked = sorted((length, side, depth), reverse=True)
-    if longest < CLEARLY_LONGER * ranked[1]:
-        raise UnreadableError(
-            f"span direction unclear: body is {longest:.0f} x {ranked[1]:.0f} x {ranked[2]:.0f} mm"
-        )
+    ranked = sorted((length, side, depth), reverse=True)
+    if ranked[0] < CLEARLY_LONGER * ranked[1]:
+        size = " x ".join(f"{value:.0f}" for value in ranked)
+        raise UnreadableError(f"span direction unclear: body is {size} mm")
+
+
+def _along_extrusion(prism: Prism, placement: Matrix) -> _Member:
+    frame = _frame(prism.along, placement)
+    section = prism.profile.turned(frame[1:] @ prism.matrix[:3, :2])
+    normal = frame @ prism.normal
+    reach = frame @ prism.along
+    if normal @ reach < 0.0:
+        normal = -normal
+    planes = ((-normal, 0.0), (normal, float(normal @ reach)))
+    return _Member(frame, prism.matrix[:3, 3], section, planes)
+
+
+def _along_elevation(prism: Prism, elevation: Elevation, placement: Matrix) -> _Member:
+    """The body swept along the two parallel sides of its profile, ended by the other sides."""
+    corners = prism.placed(elevation.corners)
+    count = len(corners)
+    sides = [corners[(row + 1) % count] - corners[row] for row in range(count)]
+    frame = _frame(sides[elevation.first], placement)
+    base = corners[elevation.first]
+    local = (corners - base) @ frame.T
+    width = frame @ prism.along
+    far = local[elevation.second]
+    around = [(0.0, 0.0), width[1:], width[1:] + far[1:], far[1:]]
+    section = ring([Corner((float(y), float(z))) for y, z in around])
+    middle = local.mean(axis=0)
+    planes = []
+    for row in range(count):
+        if row not in (elevation.first, elevation.second):
+            normal = np.array(cross_product((frame @ sides[row]).tolist(), width.tolist()))
+            normal = normal if normal @ (local[row] - middle) > 0.0 else -normal
+            planes.append((normal, float(normal @ local[row])))
+    turned = Profile((section,), prism.profile.name).turned(np.eye(2))
+    return _Member(frame, base, turned, tuple(planes))
 
 
 def _frame(span: Vector, placement: Matrix) -> Matrix:
     """Rows: the axes x along the span from the start, y to the left, z up."""
-    x = span / np.sqrt(span @ span)
+    a, b, c = span.tolist()
+    length = math.sqrt(a * a + b * b + c * c)
+    x = (a / length, b / length, c / length)
     if abs(x[2]) > VERTICAL:
         raise UnreadableError("vertical member")
-    cosines = x @ placement[:3, :3]
-    sizes = np.abs(cosines)
-    nearest = int(np.flatnonzero(sizes >= sizes.max() - TIE)[0])
-    if cosines[nearest] < 0:
-        x = -x
-    z = np.array((0.0, 0.0, 1.0)) - x[2] * x
-    z /= np.sqrt(z @ z)
-    return np.array((x, np.cross(z, x), z))
+    cosines = (np.array(x) @ placement[:3, :3]).tolist()
+    most = max(abs(value) for value in cosines)
+    if next(value for value in cosines if abs(value) >= most - TIE) < 0.0:
+        x = (-x[0], -x[1], -x[2])
+    level = math.hypot(x[0], x[1])
+    y = (-x[1] / level, x[0] / level, 0.0)
+    return np.array((x, y, cross_product(x, y)))
 
 
-def _oriented(points: Points, hole: bool) -> Points:
-    return points if (signed_area(points) > 0) != hole else points[::-1]
-
-
-Plane = tuple[Vector, float]
-"""Outward normal in the member's axes, and its distance from the base point along it."""
-
-
-def _cut_planes(prism: Prism, frame: Matrix, base: Vector) -> list[Plane]:
+def _cut_planes(prism: Prism, member: _Member) -> tuple[Plane, ...]:
     if not prism.cuts:
-        return []
+        return ()
     corners = prism.corners()
-    return [
-        (frame @ cut.outward, float(cut.outward @ (cut.point - base)))
+    return tuple(
+        (member.frame @ cut.outward, float(cut.outward @ (cut.point - member.base)))
         for cut in prism.cuts
         if acts(cut, corners)
-    ]
-
-
-def _member(
-    name: str, rings: tuple[Points, ...], planes: Sequence[Plane], frame: Matrix, base: Vector
-) -> Straight:
-    centroid = np.array([Profile(rings).centroid])
-    starts, ends = _reach(planes, rings[0])
-    (start,), (end,) = _reach(planes, centroid)
-    if not end - start > 0:
-        raise UnreadableError("nothing is left of the body after its cuts")
-    oblique = float(starts.max() - starts.min()), float(ends.max() - ends.min())
-    if sum(oblique) > OBLIQUE_SHARE * (end - start) or (ends <= starts).any():
-        raise UnreadableError(VARIES)
-    low, high = rings[0].min(axis=0), rings[0].max(axis=0)
-    middle = np.array(((low[0] + high[0]) / 2.0, low[1]))
-    axis = Axis(
-        origin=_vector(base + np.array((start, *middle)) @ frame),
-        x=_vector(frame[0]),
-        y=_vector(frame[1]),
-        z=_vector(frame[2]),
-        length=round(float(end - start), 6),
     )
-    outline = Outline(tuple(_ring(points - middle) for points in rings), name)
-    box = _box(frame, base, (starts.min(), *low), (ends.max(), *high))
-    return Straight(axis, outline, box, oblique, _steep(planes, rings[0], starts, ends))
+
+
+def _finished(member: _Member, cuts: tuple[Plane, ...]) -> Straight:
+    section, planes = member.section, member.planes + cuts
+    starts, ends = _reach(planes, section.rings[0])
+    (start,), (end,) = _reach(planes, np.array([section.centroid]))
+    length = float(end - start)
+    if not length > 0.0:
+        raise UnreadableError("nothing is left of the body after its cuts")
+    first, last = float(starts.min()), float(ends.max())
+    oblique = float(starts.max()) - first, last - float(ends.min())
+    if sum(oblique) > OBLIQUE_SHARE * length or (ends <= starts).any():
+        raise UnreadableError(VARIES)
+    low, high = (first, *section.low), (last, *section.high)
+    x, y, z = (_triple(row) for row in member.frame)
+    origin = (float(start), (section.low[0] + section.high[0]) / 2.0, section.low[1])
+    axis = Axis(_place(member, origin), x, y, z, round(length, 6))
+    centre = [(a + b) / 2.0 for a, b in zip(low, high, strict=True)]
+    half = [(b - a) / 2.0 for a, b in zip(low, high, strict=True)]
+    box = Box(_place(member, centre), (x, y, z), _triple(half))
+    steep = _steep(planes, section.rings[0], starts, ends)
+    return Straight(axis, section.outline, box, oblique, steep)
 
 
 def _reach(planes: Sequence[Plane], points: Points) -> tuple[Vector, Vector]:
@@ -232,13 +177,14 @@ def _reach(planes: Sequence[Plane], points: Points) -> tuple[Vector, Vector]:
     starts = np.full(len(points), -np.inf)
     ends = np.full(len(points), np.inf)
     for normal, offset in planes:
-        room = offset - points @ normal[1:]
-        if abs(normal[0]) < 1e-6 * np.sqrt(normal @ normal):
+        size = math.sqrt(normal @ normal)
+        if abs(normal[0]) < 1e-6 * size:
             raise UnreadableError("body is cut along its length: not read yet")
+        reach = (offset - points @ normal[1:]) / normal[0]
         if normal[0] > 0:
-            np.minimum(ends, room / normal[0], out=ends)
+            np.minimum(ends, reach, out=ends)
         else:
-            np.maximum(starts, room / normal[0], out=starts)
+            np.maximum(starts, reach, out=starts)
     return starts, ends
 
 
@@ -247,24 +193,19 @@ def _steep(
 ) -> tuple[bool, bool]:
     steep = [False, False]
     for normal, offset in planes:
-        reach = (offset - points @ normal[1:]) / normal[0]
-        limit = ends if normal[0] > 0 else starts
-        if np.abs(reach - limit).min() < 1e-6 and abs(normal[2]) > STEEP_CUT * abs(normal[0]):
-            steep[int(normal[0] > 0)] = True
+        if abs(normal[2]) > STEEP_CUT * abs(normal[0]):
+            reach = (offset - points @ normal[1:]) / normal[0]
+            limit = ends if normal[0] > 0 else starts
+            if np.abs(reach - limit).min() < 1e-6:
+                steep[int(normal[0] > 0)] = True
     return steep[0], steep[1]
 
 
-def _vector(values: npt.NDArray[np.float64]) -> tuple[float, float, float]:
-    x, y, z = np.round(values, 9).tolist()
-    return x, y, z
+def _place(member: _Member, local: Sequence[float]) -> Place3:
+    """A place in the member's axes, in the building."""
+    return _triple(member.base + np.array(local) @ member.frame)
 
 
-def _ring(points: Points) -> tuple[tuple[float, float], ...]:
-    return tuple((y, z) for y, z in np.round(points, 6).tolist())
-
-
-def _box(frame: Matrix, base: Vector, low: Sequence[float], high: Sequence[float]) -> Box:
-    lower, upper = np.array(low), np.array(high)
-    centre = base + ((lower + upper) / 2.0) @ frame
-    x, y, z = (_vector(row) for row in frame)
-    return Box(_vector(centre), (x, y, z), _vector((upper - lower) / 2.0))
+def _triple(values: Vector | Sequence[float]) -> Place3:
+    x, y, z = values.tolist() if isinstance(values, np.ndarray) else values
+    return round(x, 9), round(y, 9), round(z, 9)
