@@ -14,7 +14,7 @@ from scipy.optimize import linprog
 
 from ifccheck.beam import Axis, Beam, Box, Contact, Member, Outline, Run, Vector
 from ifccheck.frame.boxes import Boxes, overlaps
-from ifccheck.frame.contacts import between_reactions, find_contacts, held_ends, reactions_reason
+from ifccheck.frame.contacts import between_reactions, find_contacts, reactions_reason
 
 DEPTH, WIDTH, LENGTH = 600.0, 300.0, 6000.0
 RECTANGLE = Outline((((-150.0, 0.0), (150.0, 0.0), (150.0, DEPTH), (-150.0, DEPTH)),))
@@ -68,6 +68,12 @@ def places(contacts: tuple[Contact, ...]) -> list[tuple[str, str, str]]:
 
 def column(name: str, x: float, low: float, high: float, angle: float = 0.0) -> Member:
     return member(name, "IfcColumn", (x - 200.0, -200.0, low), (x + 200.0, 200.0, high), angle)
+
+
+def held_ends(contacts: tuple[Contact, ...]) -> tuple[bool, bool]:
+    """Whether each end touches something that does not merely stand on it."""
+    held = {c.place for c in contacts if c.side != "above"}
+    return "start" in held, "end" in held
 
 
 ANGLES = (0.0, 30.0, 77.0)
@@ -127,9 +133,33 @@ def test_what_stands_on_the_beam_brings_its_reaction_and_what_crosses_under_does
     assert [c.other for c in between_reactions(contacts)] == ["P (IfcColumn)"]
 
 
-def test_a_column_through_the_beam_is_not_taken_for_a_support() -> None:
-    through = column("C", 3000.0, -3000.0, 4000.0)
-    assert places(found(through)) == [("C", "between", "side")]
+@pytest.mark.parametrize("top", [0.0, 300.0, DEPTH, 4000.0])
+def test_a_column_from_below_is_below_however_high_it_is_drawn(top: float) -> None:
+    """Else a support between the ends would pass for a reaction that loads_complete waves on."""
+    assert places(found(column("C", 3000.0, -3000.0, top))) == [("C", "between", "below")]
+    assert places(found(column("C", 5900.0, -3000.0, top))) == [("C", "end", "below")]
+
+
+def test_a_column_drawn_from_the_soffit_up_stands_on_the_beam() -> None:
+    contacts = found(column("P", 3000.0, 0.0, 3600.0))
+    assert places(contacts) == [("P", "between", "side")]
+    assert between_reactions(contacts) == contacts
+
+
+def test_a_deeper_beam_that_crosses_ours_may_rest_on_it() -> None:
+    across = member("X", "IfcBeam", (2850.0, -3000.0, -300.0), (3150.0, 3000.0, DEPTH))
+    contacts = found(across)
+    assert places(contacts) == [("X", "between", "side")]
+    assert between_reactions(contacts) == contacts
+
+
+def test_a_beam_within_a_wall_lies_on_it() -> None:
+    wall = member("W", "IfcWall", (-500.0, -150.0, -2000.0), (6500.0, 150.0, 900.0))
+    assert places(found(wall)) == [
+        ("W", "between", "below"),
+        ("W", "end", "below"),
+        ("W", "start", "below"),
+    ]
 
 
 @pytest.mark.parametrize("standing", [True, False])
@@ -209,7 +239,7 @@ def test_what_makes_no_contact(ifc_class: str) -> None:
     "ifc_class",
     ["IfcBeam", "IfcBeamStandardCase", "IfcColumn", "IfcColumnStandardCase", "IfcMember",
      "IfcMemberStandardCase", "IfcWall", "IfcWallStandardCase", "IfcWallElementedCase",
-     "IfcFooting", "IfcPile", "IfcBearing"],
+     "IfcFooting", "IfcPile", "IfcCaissonFoundation", "IfcBearing"],
 )  # fmt: skip
 def test_what_makes_contacts(ifc_class: str) -> None:
     at_end = member("F", ifc_class, (5800.0, -100.0, -100.0), (6100.0, 100.0, 0.0))

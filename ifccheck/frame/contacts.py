@@ -32,7 +32,12 @@ TOLERANCE = 10.0
 FRAMING = ("IfcBeam", "IfcColumn", "IfcMember")
 """Members that bring the reaction of others."""
 
-BEARING = (*FRAMING, "IfcWall", "IfcFooting", "IfcPile", "IfcBearing")
+UPRIGHT = (
+    "IfcColumn", "IfcWall", "IfcFooting", "IfcPile", "IfcCaissonFoundation", "IfcBearing",
+)  # fmt: skip
+"""Members that stand and do not span."""
+
+TOUCHING = (*FRAMING, *UPRIGHT)
 
 PROXY = "IfcBuildingElementProxy"
 
@@ -63,6 +68,8 @@ class _Touches:
     """Half extents of the beam [mm] (P, 3)"""
     within: Bools
     """The other lies wholly within the beam's box (P)"""
+    upright: Bools
+    """The other is of a kind that stands on the ground, not one that spans (P)"""
 
 
 def find_contacts(
@@ -74,7 +81,9 @@ def find_contacts(
     end of the beam is an end contact; one that is longer than an end support can be is one
     between the ends as well. What runs alongside the beam or stands on it over such a length
     is no end contact, and neither is what lies wholly within the beam's box: they cannot hold
-    its end. A beam whose body could not be read has no contacts.
+    its end. A column, wall or foundation that the beam passes into is below it where it reaches
+    under the soffit, even if it is drawn up to the beam's top or beyond. A beam whose body
+    could not be read has no contacts.
 
     Parameters
     ----------
@@ -86,7 +95,7 @@ def find_contacts(
         Greatest gap between two members that touch [mm].
     """
     solid = [beam for beam in beams if beam.axis is not None and beam.runs]
-    bearing = [member for member in members if _class_of(member) in (*BEARING, PROXY)]
+    bearing = [member for member in members if _class_of(member) in (*TOUCHING, PROXY)]
     touches = _find_touches(solid, bearing, tolerance)
     found: dict[str, list[Contact]] = {beam.key: [] for beam in beams}
     for contact in _contacts(solid, bearing, touches, tolerance):
@@ -113,7 +122,8 @@ def _find_touches(beams: Sequence[Beam], members: Sequence[Member], tolerance: f
     touching = np.flatnonzero(~np.isnan(covered[:, 0, 0]))
     beam, other = beam[touching], other[touching]
     within = _within(grown.take(beam), others.take(other))
-    return _Touches(beam, other, covered[touching], own.half[beam], within)
+    upright = np.array([_class_of(member) in UPRIGHT for member in members], np.bool_)
+    return _Touches(beam, other, covered[touching], own.half[beam], within, upright[other])
 
 
 def _is_itself(beams: Sequence[Beam], members: Sequence[Member], beam: Ints, other: Ints) -> Bools:
@@ -162,10 +172,12 @@ def _sides(touches: _Touches, tolerance: float) -> tuple[Bools, Bools, Bools]:
     """Whether the other lies under the soffit, stands on the top, or lies beside the beam."""
     y, z = touches.covered[:, 1], touches.covered[:, 2]
     half_width, half_depth = touches.half[:, 1], touches.half[:, 2]
-    below = z[:, 1] <= -half_depth + tolerance
-    above = ~below & (z[:, 0] >= half_depth - tolerance)
     lateral = (y[:, 0] >= half_width - tolerance) | (y[:, 1] <= -half_width + tolerance)
-    return below, above, lateral & ~below & ~above
+    above = z[:, 0] >= half_depth - tolerance
+    reaches_under = z[:, 0] <= -half_depth - tolerance / 2.0
+    under = z[:, 1] <= -half_depth + tolerance
+    below = under | (touches.upright & reaches_under & ~lateral)
+    return below, above & ~below, lateral & ~below & ~above
 
 
 def _side(place: _Place, below: bool, above: bool, beside: bool) -> _Side:
@@ -187,15 +199,6 @@ def _places(touches: _Touches, cannot_hold_long: Bools, tolerance: float) -> dic
     at_start = may_hold & (x[:, 0] <= -half_length + tolerance)
     at_end = may_hold & (x[:, 1] >= half_length - tolerance)
     return {"start": at_start, "end": at_end, "between": long | ~(at_start | at_end)}
-
-
-def held_ends(contacts: Sequence[Contact]) -> tuple[bool, bool]:
-    """Whether each end touches a member that may hold it: one that does not stand on it."""
-    holding = [contact for contact in contacts if contact.side != "above"]
-    return (
-        any(contact.place == "start" for contact in holding),
-        any(contact.place == "end" for contact in holding),
-    )
 
 
 def between_reactions(
