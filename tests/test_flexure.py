@@ -53,7 +53,7 @@ def prepared_of(sections: list[Given], span: float = 1e6) -> Prepared:
     layers = np.zeros((count, most, 3))
     layers[..., 2] = 1.0
     for row, section in zip(layers, sections, strict=True):
-        row[: len(section.layers)] = section.layers
+        row[: len(section.layers)] = np.reshape(section.layers, (-1, 3))
     shape = (count, most)
     flanges = np.array([overhangs(s.rings) for s in sections])
     members = Members(
@@ -406,6 +406,8 @@ def test_cracking_moment_by_hand() -> None:
         ({"strength": 80.1}, "8.6.1.1"),
         ({"steel_yield": 520.0}, "8.5.1"),
         ({"layers": ((60.0, 9000.0, 35.7),)}, "10.5.2"),
+        ({"layers": ((60.0, 1000.0, 25.2), (520.0, 100.0, 11.3))}, "10.1"),
+        ({"layers": ((-40.0, 1000.0, 25.2),)}, "10.1"),
     ],
 )
 def test_outside_the_range_there_is_no_number(change, clause) -> None:
@@ -589,6 +591,13 @@ def test_no_steel_no_moment() -> None:
     result = strength_of(section, *(np.array([[v]]) for v in (440.0, 0.0, 1.0, 400.0)))
     assert result.moment[0] == 0.0
     assert result.neutral_axis_depth[0] == 0.0
+
+
+def test_a_beam_without_any_layer() -> None:
+    prepared = prepared_of([Given(rectangle(300, 500), ())])
+    assert prepared.sagging.moment_resistance[0] == 0.0
+    assert prepared.longitudinal_yield[0] == 0.0
+    assert prepared.hogging.shear_depth[0] == pytest.approx(360.0)
 
 
 def test_taking_rows_takes_every_field() -> None:

@@ -64,17 +64,23 @@ class _Sections:
 
     strips: Floats
     depth: Floats
-    area: Floats
-    stress_limit: Floats
-    """Yield stress of each layer [MPa]"""
-    diameter: Floats
+    """Of each layer [mm]"""
+    yield_force: Floats
+    """Factored force of each layer at yield [N]"""
+    elastic_force: Floats
+    """Factored force of each layer at the crushing strain, if it were elastic [N]"""
+    displaced_force: Floats
+    """Force of the concrete that each layer displaces within the block [N]"""
+    reach: Floats
+    """How far into its diameter the block reaches, less the part that grows with c [1]"""
+    reach_rate: Floats
+    """That part over c [1/mm]"""
+    deepest: Floats
+    """Depth of the deepest layer [mm]"""
     block_stress: Floats
     block_factor: Floats
-    crushing_strain: Floats
-    modulus: Floats
-    factor: Floats
 
-    def take(self, rows: Bools | slice) -> _Sections:
+    def take(self, rows: Bools | Ints | slice) -> _Sections:
         """The same at the given rows, laid out in memory so that sums over layers are quick."""
         return _Sections(
             *(np.asfortranarray(getattr(self, item.name)[rows]) for item in fields(self))
@@ -122,48 +128,40 @@ def flexural_strength(
     never taken as less than nothing. That part grows over the bar's diameter, so that the
     sum of forces rises steadily with c and equilibrium has one answer.
     """
-    sections = _broadcast(
-        strips, layer_depth, layer_area, layer_yield, layer_diameter,
-        block_stress, block_factor, crushing_strain, steel_modulus, steel_factor,
-    )  # fmt: skip
-    return _strength(sections, _neutral_axis(sections))
-
-
-def _broadcast(strips: Floats, *given: Floats | float) -> _Sections:
-    """All inputs as arrays of n rows."""
-    layers, scalars = given[:4], given[4:]
-    profile = np.asarray(strips, dtype=np.float64)
-    rows = np.broadcast_arrays(profile[:, 0, 0], *scalars)[1:]
-    sections = _Sections(
-        profile,
-        *(np.asarray(a, dtype=np.float64) for a in layers),
-        *(np.asarray(a, dtype=np.float64) for a in rows),
+    stress, beta, eps_cu, Es, phi_s = (
+        np.asarray(a, dtype=np.float64)[..., None]
+        for a in (block_stress, block_factor, crushing_strain, steel_modulus, steel_factor)
     )
-    return sections.take(slice(None))
+    ones = np.ones((len(strips), 1))
+    sections = _Sections(
+        strips=strips,
+        depth=layer_depth,
+        yield_force=phi_s * layer_area * layer_yield,
+        elastic_force=phi_s * layer_area * Es * eps_cu,
+        displaced_force=stress * layer_area,
+        reach=0.5 - layer_depth / layer_diameter,
+        reach_rate=beta / layer_diameter,
+        deepest=np.where(layer_area > 0.0, layer_depth, 0.0).max(axis=1, initial=0.0),
+        block_stress=(stress * ones)[:, 0],
+        block_factor=(beta * ones)[:, 0],
+    ).take(slice(None))
+    return _strength(sections, _neutral_axis(sections))
 
 
 def _steel_forces(sections: _Sections, c: Floats) -> tuple[Floats, Floats]:
     """Net force of each layer, compression positive (n, L), and its slope with c."""
     s = sections
-    depth_of_axis = c[:, None]
-    elastic = (s.modulus * s.crushing_strain)[:, None] * (1.0 - s.depth / depth_of_axis)
-    stress = np.minimum(np.maximum(elastic, -s.stress_limit), s.stress_limit)
-    strength = s.factor[:, None] * s.area
-    force = strength * stress
-    rising = np.where(
-        stress == elastic,
-        strength * (s.modulus * s.crushing_strain)[:, None] * s.depth / depth_of_axis**2,
-        0.0,
-    )
-    concrete = s.block_stress[:, None] * s.area
-    reached = ((s.block_factor * c)[:, None] - s.depth) / s.diameter + 0.5
-    net = force - concrete * np.minimum(np.maximum(reached, 0.0), 1.0)
-    sinking = np.where(
-        (reached > 0.0) & (reached < 1.0), concrete * s.block_factor[:, None] / s.diameter, 0.0
-    )
-    in_compression = force > 0.0
-    slope = np.where(in_compression, np.where(net > 0.0, rising - sinking, 0.0), rising)
-    return np.where(in_compression, np.maximum(net, 0.0), force), slope
+    depth_ratio = s.depth / c[:, None]
+    elastic = s.elastic_force * (1.0 - depth_ratio)
+    force = np.minimum(np.maximum(elastic, -s.yield_force), s.yield_force)
+    rising = np.where(force == elastic, s.elastic_force * depth_ratio / c[:, None], 0.0)
+    reached = s.reach + s.reach_rate * c[:, None]
+    within = np.minimum(np.maximum(reached, 0.0), 1.0)
+    net = force - s.displaced_force * within
+    sinking = np.where(within == reached, s.displaced_force * s.reach_rate, 0.0)
+    pushing = force > 0.0
+    slope = np.where(pushing, np.where(net > 0.0, rising - sinking, 0.0), rising)
+    return np.where(pushing, np.maximum(net, 0.0), force), slope
 
 
 def _out_of_balance(sections: _Sections, c: Floats) -> tuple[Floats, Floats]:
@@ -182,29 +180,22 @@ def _neutral_axis(sections: _Sections) -> Floats:
     Between 0, where all steel pulls, and the deepest layer, where none does, the sum of forces
     rises from below to above nothing.
     """
-    capacity = (sections.factor[:, None] * sections.area * sections.stress_limit).sum(axis=-1)
-    deepest = np.where(sections.area > 0.0, sections.depth, 0.0).max(axis=-1, initial=0.0)
+    capacity = sections.yield_force.sum(axis=-1)
+    guess = _first_guess(sections, capacity)
+    known = np.isfinite(guess + (sections.elastic_force + sections.reach_rate).sum(axis=-1))
     c = np.where(capacity <= NEGLIGIBLE_FORCE, 0.0, np.nan)
-    known = np.isfinite(_out_of_balance(sections, np.maximum(deepest, 1.0))[0])
-    rows = np.flatnonzero(known & (capacity > NEGLIGIBLE_FORCE) & (deepest > 0.0))
+    rows = np.flatnonzero(known & (capacity > NEGLIGIBLE_FORCE) & (sections.deepest > 0.0))
     if len(rows):
-        c[rows] = _search(sections.take(_mask(rows, len(c))), deepest[rows], capacity[rows])
+        c[rows] = _search(sections.take(rows), guess[rows], capacity[rows])
     return c
 
 
-def _mask(rows: Ints, count: int) -> Bools:
-    mask = np.zeros(count, dtype=np.bool_)
-    mask[rows] = True
-    return mask
-
-
-def _search(sections: _Sections, deepest: Floats, capacity: Floats) -> Floats:
-    """Newton's method kept within a bracket, for all sections at once."""
-    found = np.full_like(deepest, np.nan)
-    place = np.arange(len(deepest))
-    finished = np.zeros(len(deepest), dtype=np.bool_)
-    low, high = np.zeros_like(deepest), deepest
-    c = _first_guess(sections, deepest, capacity)
+def _search(sections: _Sections, c: Floats, capacity: Floats) -> Floats:
+    """Newton's method from a first guess, kept within a bracket, for all sections at once."""
+    found = np.full_like(c, np.nan)
+    place = np.arange(len(c))
+    finished = np.zeros(len(c), dtype=np.bool_)
+    low, high = np.zeros_like(c), sections.deepest
     for step in range(MOST_STEPS):
         balance, slope = _out_of_balance(sections, c)
         low, high = np.where(balance < 0.0, c, low), np.where(balance >= 0.0, c, high)
@@ -228,13 +219,13 @@ def _search(sections: _Sections, deepest: Floats, capacity: Floats) -> Floats:
     return found
 
 
-def _first_guess(sections: _Sections, deepest: Floats, capacity: Floats) -> Floats:
+def _first_guess(sections: _Sections, capacity: Floats) -> Floats:
     """Neutral axis if all steel yielded in tension and the section were as wide as on average."""
     height = sections.strips[..., 1].max(axis=-1)
     area, _ = compression_block(sections.strips, height)
     breadth = np.divide(area, height, out=np.ones_like(area), where=area > 0.0)
     c = capacity / np.maximum(sections.block_stress * sections.block_factor * breadth, 1e-300)
-    guess: Floats = np.minimum(np.maximum(c, 0.01 * deepest), 0.9 * deepest)
+    guess: Floats = np.minimum(np.maximum(c, 0.01 * sections.deepest), 0.9 * sections.deepest)
     return guess
 
 

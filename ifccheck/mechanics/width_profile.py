@@ -11,8 +11,10 @@ from collections.abc import Sequence
 
 import numpy as np
 
-from ifccheck.beam import Ring
 from ifccheck.mechanics.arrays import Bools, Floats
+
+Ring = Sequence[tuple[float, float]]
+"""Corners (y, z) of a closed line [mm]"""
 
 SLIVER = 1e-6
 """Lengths below this [mm] are rounding, not shape."""

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import dataclass, fields, replace
-from typing import TYPE_CHECKING, Any, TypeVar
+from typing import Any, ClassVar, Protocol, TypeVar
 
 import numpy as np
 
@@ -15,6 +15,7 @@ from ifccheck.mechanics.flexure import (
     tension_side,
 )
 from ifccheck.mechanics.width_profile import (
+    SLIVER,
     area_below,
     bottom_of,
     first_moment_below,
@@ -27,10 +28,14 @@ from ifccheck.mechanics.width_profile import (
 )
 from ifccheck.standards.csa_a23_3_14 import flange, materials
 
-if TYPE_CHECKING:
-    from _typeshed import DataclassInstance
 
-State = TypeVar("State", bound="DataclassInstance")
+class _Dataclass(Protocol):
+    """Any dataclass"""
+
+    __dataclass_fields__: ClassVar[dict[str, Any]]
+
+
+State = TypeVar("State", bound=_Dataclass)
 
 
 def take_rows(state: State, rows: Ints) -> State:
@@ -94,6 +99,8 @@ class FaceState:
     """Mcr of the gross section [N*mm]"""
     beyond_ductility: Bools
     """c/d exceeds 700/(700 + fy) (10.5.2): Mr is nan"""
+    bars_outside: Bools
+    """A bar lies above or below the concrete: Mr is nan"""
 
     def take(self, rows: Ints) -> FaceState:
         """The same at the given stations; rows may repeat."""
@@ -111,9 +118,18 @@ class Layers:
     start: Floats
     end: Floats
     start_length: Floats
+    """Development length in tension from the bars' start [mm]; inf for padding"""
     end_length: Floats
-    start_length_compression: Floats
-    end_length_compression: Floats
+    start_push: Floats
+    """Development length in compression, nowhere less than that in tension [mm]"""
+    end_push: Floats
+
+    @property
+    def slower_in_compression(self) -> bool:
+        """Some bar needs a longer way to develop in compression than in tension."""
+        return bool((self.start_push != self.start_length).any()) or bool(
+            (self.end_push != self.end_length).any()
+        )
 
     def take(self, rows: Ints, count: int) -> Layers:
         """The first layers of the given beams, laid out so that sums over layers are quick."""
@@ -148,6 +164,22 @@ class SectionState:
         reach: Bools = ~(self.pulled <= 0.0)
         return reach
 
+    @property
+    def steel_yield(self) -> Floats:
+        """Greatest fy of the layers that reach the section [MPa]"""
+        greatest: Floats = np.where(self.present, self.bars.yield_strength, 0.0).max(
+            axis=1, initial=0.0
+        )
+        return greatest
+
+    @property
+    def bars_outside(self) -> Bools:
+        """A bar that reaches the section has its centre outside the outline's height"""
+        above = self.bars.height > top_of(self.strips)[:, None] + SLIVER
+        below = self.bars.height < bottom_of(self.strips)[:, None] - SLIVER
+        outside: Bools = ((above | below) & self.present).any(axis=1)
+        return outside
+
 
 def sagging_face(section: SectionState) -> FaceState:
     """The soffit in tension, the flange in compression."""
@@ -181,14 +213,20 @@ def _face(
     side = tension_side(layer_depth, bars.area, h)
     full = np.where(side & section.present, bars.area, 0.0)
     developed = full * section.pulled
-    tension_yield = np.where(full > 0.0, bars.yield_strength, 0.0).max(axis=1)
+    tension_yield = np.where(full > 0.0, bars.yield_strength, 0.0).max(axis=1, initial=0.0)
     d = centroid_depth(layer_depth, developed)
     bw = least_width(strips, np.zeros_like(h), np.where(np.isnan(d), h, d))
     s = _strength(section, strips, layer_depth, side)
     tension_area = developed.sum(axis=1)
-    beyond_ductility = s.neutral_axis_depth > ductility_limit(tension_yield) * d
-    outside = beyond_ductility | materials.beyond_concrete_strength(section.strength)
-    outside |= (materials.beyond_yield(bars.yield_strength) & section.present).any(axis=1)
+    beyond_ductility: Bools = s.neutral_axis_depth > ductility_limit(tension_yield) * d
+    outside: Bools = np.logical_or.reduce(
+        [
+            beyond_ductility,
+            materials.beyond_concrete_strength(section.strength),
+            materials.beyond_yield(section.steel_yield),
+            section.bars_outside,
+        ]
+    )
     bt = np.minimum(greatest_width(strips, h / 2, h), tension_width_limit * bw)
     return FaceState(
         moment_resistance=np.where(outside, np.nan, s.moment),
@@ -212,6 +250,7 @@ def _face(
         minimum_area=minimum_area(section.strength, tension_yield, bt, h),
         cracking_moment=_cracking_moment(section, strips),
         beyond_ductility=beyond_ductility,
+        bars_outside=section.bars_outside,
     )
 
 

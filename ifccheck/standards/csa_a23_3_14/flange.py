@@ -90,7 +90,9 @@ def effective_strips(
     underside = np.minimum((top + bottom_of(strips)) / 2, top - thickness)
     upper = strips[..., 0] >= underside[:, None] - SLIVER
     widest = np.where(upper[..., None], strips[..., 2:], 0.0).max(axis=(-1, -2))
-    limit = np.where(upper & (excess > 0.0)[:, None], (widest - excess)[:, None], np.inf)
+    limit = np.where(
+        upper & (excess > 0.0)[:, None], np.maximum(widest - excess, 0.0)[:, None], np.inf
+    )
     cut = strips.copy()
     cut[..., 2:] = np.minimum(strips[..., 2:], limit[..., None])
     return cut

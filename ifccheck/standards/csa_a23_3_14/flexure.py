@@ -154,6 +154,11 @@ def _outside(prepared: Prepared, face: FaceState, moment: Floats) -> tuple[Outsi
             "the tension steel cannot be taken to yield: c/d exceeds 700/(700 + fy)",
             demanded & face.beyond_ductility,
         ),
+        Outside(
+            "10.1",
+            "a bar lies above or below the concrete of this section",
+            demanded & face.bars_outside,
+        ),
     )
 
 

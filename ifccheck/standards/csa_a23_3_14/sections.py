@@ -170,19 +170,21 @@ def _layers(members: Members) -> Layers:
         concrete_strength=strength,
         density_factor=density,
     )
-    pushed = development.compression_development_length(
+    least = development.compression_development_length(
         diameter=m.layer_diameter, steel_yield=m.layer_yield, concrete_strength=strength
     )
-    pulled_lengths, pushed_lengths = (
-        [
-            np.select([anchor == ANCHOR_FULL, anchor == ANCHOR_HOOK], [0.0, hook], straight)
-            for anchor in (m.layer_start_anchor, m.layer_end_anchor)
-        ]
-        for hook in (hooked, np.maximum(hooked, pushed))
-    )
+    pulled = [
+        np.select(
+            [m.layer_area <= 0.0, anchor == ANCHOR_FULL, anchor == ANCHOR_HOOK],
+            [np.inf, 0.0, hooked],
+            straight,
+        )
+        for anchor in (m.layer_start_anchor, m.layer_end_anchor)
+    ]
+    pushed = [np.where(length > 0.0, np.maximum(length, least), length) for length in pulled]
     return Layers(
         m.layer_height, m.layer_area, m.layer_diameter, m.layer_yield, m.layer_start, m.layer_end,
-        *pulled_lengths, *pushed_lengths,
+        *pulled, *pushed,
     )  # fmt: skip
 
 
@@ -207,7 +209,7 @@ def _join(states: Sequence[FaceState]) -> FaceState:
 
 def _groups(members: Members, stations: Stations) -> Iterator[tuple[Ints, int, int]]:
     """Rows of stations with about as many layers and strips, and those numbers."""
-    layers = _room(members.layer_area > 0.0)[stations.beam]
+    layers = _room(~(members.layer_area <= 0.0))[stations.beam]
     strips = _room(members.strips[..., 1] > members.strips[..., 0])[stations.section]
     most = int(strips.max(initial=1)) + 1
     kind = layers * most + strips
@@ -228,7 +230,11 @@ def _group(
 ) -> tuple[FaceState, FaceState, Floats]:
     """Both faces and the greatest fy at stations of about the same make."""
     beam, section = stations.beam[rows], stations.section[rows]
-    pulled, pushed = _developed(bars.take(beam, layers), stations.x[rows], stations.side[rows])
+    place = (stations.x[rows], stations.side[rows])
+    pulled = _developed(bars, beam, layers, *place, bars.start_length, bars.end_length)
+    pushed = pulled
+    if bars.slower_in_compression:
+        pushed = _developed(bars, beam, layers, *place, bars.start_push, bars.end_push)
     new = _differs(beam, section, pulled, pushed)
     first, state = np.flatnonzero(new), np.cumsum(new) - 1
     distinct = SectionState(
@@ -243,28 +249,32 @@ def _group(
         pulled=np.asfortranarray(pulled[first]),
         pushed=np.asfortranarray(pushed[first]),
     )
-    steel_yield = np.where(distinct.present, distinct.bars.yield_strength, 0.0).max(axis=1)
     sagging, hogging = sagging_face(distinct), hogging_face(distinct)
-    return sagging.take(state), hogging.take(state), steel_yield[state]
+    return sagging.take(state), hogging.take(state), distinct.steel_yield[state]
 
 
-def _developed(bars: Layers, x: Floats, side: Ints) -> tuple[Floats, Floats]:
-    """Part of fy that each layer reaches in tension and in compression."""
-    pulled, pushed = (
-        development.developed_fraction(
-            x=x[:, None],
-            side=side[:, None],
-            bar_start=bars.start,
-            bar_end=bars.end,
-            start_length=start_length,
-            end_length=end_length,
-        )
-        for start_length, end_length in (
-            (bars.start_length, bars.end_length),
-            (bars.start_length_compression, bars.end_length_compression),
-        )
+def _developed(
+    bars: Layers,
+    beam: Ints,
+    layers: int,
+    x: Floats,
+    side: Ints,
+    start_length: Floats,
+    end_length: Floats,
+) -> Floats:
+    """Part of fy that each layer reaches at the stations."""
+    start, end, start_length, end_length = (
+        np.asfortranarray(a[beam, :layers])
+        for a in (bars.start, bars.end, start_length, end_length)
     )
-    return np.where(bars.area == 0.0, 0.0, pulled), np.where(bars.area == 0.0, 0.0, pushed)
+    return development.developed_fraction(
+        x=x[:, None],
+        side=side[:, None],
+        bar_start=start,
+        bar_end=end,
+        start_length=start_length,
+        end_length=end_length,
+    )
 
 
 def _differs(beam: Ints, section: Ints, pulled: Floats, pushed: Floats) -> Bools:
