@@ -12,6 +12,7 @@ from ifccheck.beam import Case, Combination
 from ifccheck.brief.cases import cases_of, combination_remarks, combinations_of
 from ifccheck.brief.load import load_brief
 from ifccheck.brief.model import Selection
+from ifccheck.brief.places import lines_of
 from ifccheck.errors import BriefError
 
 BASIS = """\
@@ -503,6 +504,15 @@ def test_a_key_that_is_given_twice_is_told(fault):
     assert "not TOML at line 4" in fault(BASIS + 'standard = "other"\n')
 
 
+def test_every_line_that_is_told_holds_its_key():
+    lines = WHOLE.splitlines()
+    found = lines_of(WHOLE)
+    assert len(found) > 60
+    for path, number in found.items():
+        key = next(part for part in reversed(path) if isinstance(part, str))
+        assert key in lines[number - 1]
+
+
 def test_lines_are_found_past_strings_and_lists_over_many_lines(fault):
     text = (
         BASIS
@@ -547,7 +557,8 @@ def test_a_damaged_brief_is_read_or_told_in_one_line(tmp_path, data):
 
 def test_reading_the_brief_is_light_to_import():
     code = (
-        "import sys, ifccheck.brief.load, ifccheck.brief.apply, ifccheck.brief.schedule;"
+        "import sys, ifccheck.brief.load, ifccheck.brief.loads, ifccheck.brief.schedule,"
+        " ifccheck.brief.statements, ifccheck.brief.supports, ifccheck.brief.zones;"
         "print([m for m in ('pydantic', 'pandas', 'openpyxl', 'pint', 'numpy', 'ifcopenshell')"
         " if m in sys.modules])"
     )

@@ -6,20 +6,19 @@ from pathlib import Path
 
 import pytest
 
-from ifccheck.beam import Axis, Beam, Contact, Outline, Reason, Run, Span, Support
-from ifccheck.brief.apply import (
+from ifccheck.beam import Axis, Beam, Contact, Given, Outline, Reason, Run, Span, Support
+from ifccheck.brief.load import load_brief
+from ifccheck.brief.loads import loads_on_beams
+from ifccheck.brief.selecting import check_reached, join, selections
+from ifccheck.brief.statements import (
     BeamStatement,
     MaterialStatement,
-    check_reached,
     default_materials,
-    join,
-    loads_on_beams,
     materials,
-    resolve_supports,
-    selections,
+    span_reason,
     statements,
 )
-from ifccheck.brief.load import load_brief
+from ifccheck.brief.supports import resolve_supports
 from ifccheck.errors import BriefError
 
 BASIS = """\
@@ -413,6 +412,40 @@ def test_ends_that_together_cannot_stand_are_an_error(load):
         "brief.toml: supports[1] (line 10): beam B-1: a beam with a pinned start and a free end"
         " cannot stand"
     )
+
+
+def test_bearings_that_swallow_the_beam_are_an_error(load):
+    """Faces that pass each other would leave nothing to check in shear."""
+    brief = load(PINNED + '[[supports]]\nbeams = ["B-1"]\nbearing = ["2 m", "1.5 m"]\n')
+    with pytest.raises(BriefError) as caught:
+        stand(brief, BOTH_ENDS)
+    assert "beam B-1: bearings of 3500 mm leave too little of its length of 6000 mm" in str(
+        caught.value
+    )
+
+
+@pytest.mark.parametrize(
+    ("span", "kinds", "bearings", "beyond"),
+    [
+        (6000.0, ("pinned", "pinned"), (0.0, 0.0), None),
+        (5700.0, ("pinned", "pinned"), (300.0, 300.0), None),
+        (5600.0, ("fixed", "pinned"), (0.0, 0.0), None),
+        (5000.0, ("pinned", "pinned"), (0.0, 0.0), "1.00 m"),
+        (4000.0, ("pinned", "pinned"), (400.0, 400.0), "1.60 m"),
+        (5600.0, ("fixed", "free"), (400.0, 0.0), None),
+        (4000.0, ("fixed", "free"), (400.0, 0.0), "1.60 m"),
+        (7000.0, ("pinned", "pinned"), (0.0, 0.0), None),
+    ],
+)
+def test_a_stated_span_may_not_leave_an_overhang_unrated(span, kinds, bearings, beyond):
+    """Breaking this would drop the load on the overhang and could print a wrong adequate."""
+    start, end = (Support(kind, b, "brief") for kind, b in zip(kinds, bearings, strict=True))
+    statement = BeamStatement(span=Given(span, "brief, beams[1]"))
+    reason = span_reason(statement, beam("B-1"), (start, end))
+    assert (reason is None) == (beyond is None)
+    if reason is not None:
+        assert f"leaves {beyond} of the beam beyond its supports" in reason.text
+    assert span_reason(BeamStatement(), beam("B-1"), (start, end)) is None
 
 
 # --- statements and materials ---------------------------------------------------------------

@@ -8,9 +8,9 @@ import openpyxl
 import pytest
 
 from ifccheck.beam import Axis, Beam, Remark
-from ifccheck.brief.apply import schedule_remarks, with_schedule
 from ifccheck.brief.model import Selection
 from ifccheck.brief.schedule import read_schedule
+from ifccheck.brief.zones import schedule_remarks, with_schedule
 from ifccheck.errors import BriefError
 from ifccheck.notation import parse_bars, parse_stirrups
 

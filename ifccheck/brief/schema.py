@@ -176,7 +176,7 @@ class SupportTable(SelectingTable):
     bearing: (
         Annotated[
             tuple[float, float],
-            _pair(lambda value: read_within(value, Range("length", "0 mm", "5 m"))),
+            _pair(lambda value: read_within(value, Range("length", "0 mm", "2 m"))),
         ]
         | None
     ) = None

@@ -6,7 +6,7 @@ from collections import defaultdict
 from collections.abc import Mapping
 from dataclasses import dataclass, replace
 
-from ifccheck.beam import Given, Remark
+from ifccheck.beam import Beam, Given, Reason, Remark, Support
 from ifccheck.brief.merging import Matches, Said, merge
 from ifccheck.brief.model import BeamEntry, Brief, MaterialEntry
 from ifccheck.units import ShownKind, show
@@ -19,6 +19,9 @@ MATERIAL_KINDS: Mapping[str, ShownKind] = {
     "density": "density",
     "aggregate_size": "dimension",
 }
+
+MOST_BEYOND = 0.1
+"""Part of a beam's length that may lie beyond its bearings where the brief states the span."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -59,6 +62,26 @@ def statements(brief: Brief, matches: Matches) -> dict[str, BeamStatement]:
         )
         for key in (*stated, *(key for key in eccentric if key not in stated))
     }
+
+
+def span_reason(
+    statement: BeamStatement, beam: Beam, supports: tuple[Support, Support]
+) -> Reason | None:
+    """Say that a stated span leaves a part of the beam beyond its supports; None where not.
+
+    Such a part is an overhang, or another span: neither is in the span that is rated.
+    """
+    if statement.span is None or beam.axis is None:
+        return None
+    free = any(support.kind == "free" for support in supports)
+    bearings = sum(support.bearing for support in supports) * (1.0 if free else 0.5)
+    beyond = beam.length - bearings - statement.span.value
+    if beyond <= MOST_BEYOND * beam.length:
+        return None
+    return Reason(
+        f"the stated span of {show(statement.span.value, 'length')} leaves"
+        f" {show(beyond, 'length')} of the beam beyond its supports"
+    )
 
 
 def _loaded_by(brief: Brief, matches: Matches, eccentric: bool = False) -> dict[str, list[str]]:

@@ -26,6 +26,9 @@ STANDING_PAIRS = frozenset(
 )
 """Kinds of the start and the end with which a single beam can stand."""
 
+MOST_BEARING = 0.5
+"""Part of a beam's length that its bearings may cover together."""
+
 
 def cannot_stand(start: SupportKind, end: SupportKind) -> str | None:
     """Say why a single beam with such ends falls down; None where it stands."""
@@ -79,10 +82,24 @@ def _supports(
         return start
     if isinstance(end, Reason):
         return end
+    _check(brief, beam, said, start, end)
+    return start, end
+
+
+def _check(
+    brief: Brief, beam: Beam, said: Mapping[str, Said], start: Support, end: Support
+) -> None:
+    """Raise BriefError where the beam cannot stand, or its bearings swallow it."""
     if reason := cannot_stand(start.kind, end.kind):
         place = next(said[name].place for name in ("start", "end") if name in said)
         raise BriefError(f"{_told_at(brief, place)}: beam {beam.mark}: {reason}")
-    return start, end
+    bearings = start.bearing + end.bearing
+    if beam.axis is not None and bearings > MOST_BEARING * beam.length:
+        place = next(said[f"{name}_bearing"].place for name in ("start", "end"))
+        raise BriefError(
+            f"{_told_at(brief, place)}: beam {beam.mark}: bearings of {show(bearings, 'dimension')}"
+            f" leave too little of its length of {show(beam.length, 'dimension')}"
+        )
 
 
 def _touched_between(contact: Contact) -> Reason:
