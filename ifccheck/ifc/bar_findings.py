@@ -1,0 +1,65 @@
+"""What is to be said of beams' bars, gathered so that each thing is said once of all its bars."""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Iterable, Sequence
+
+from ifccheck.beam import Reason, Remark, RemarkKind
+
+STAGE = "reinforcement"
+LISTED = 3
+"""So many bars are named, the others counted."""
+
+
+class Findings:
+    """Remarks and reasons on beams, each with the bars that it is about."""
+
+    def __init__(self, key: Callable[[int], str]) -> None:
+        self._key = key
+        self._remarks: dict[int, dict[tuple[str, RemarkKind], list[str]]] = {}
+        self._reasons: dict[int, dict[tuple[str, bool], list[str]]] = {}
+
+    def remark(
+        self, beam: int, text: str, bars: Iterable[str] = (), kind: RemarkKind = "doubt"
+    ) -> None:
+        """Say something of bars of a beam."""
+        self._remarks.setdefault(beam, {}).setdefault((text, kind), []).extend(bars)
+
+    def reason(self, beam: int, text: str, bars: Iterable[str] = (), blocking: bool = True) -> None:
+        """Say why bars keep a beam from being rated."""
+        self._reasons.setdefault(beam, {}).setdefault((text, blocking), []).extend(bars)
+
+    def beams(self) -> Iterable[int]:
+        """Beams of which something is said."""
+        return self._remarks.keys() | self._reasons.keys()
+
+    def remarks(self, beam: int) -> tuple[Remark, ...]:
+        """The remarks on a beam."""
+        said = self._remarks.get(beam, {})
+        return tuple(
+            Remark(self._key(beam), STAGE, _sentence(bars, text), kind)
+            for (text, kind), bars in said.items()
+        )
+
+    def reasons(self, beam: int) -> tuple[Reason, ...]:
+        """The reasons why a beam is not rated."""
+        said = self._reasons.get(beam, {})
+        return tuple(
+            Reason(_sentence(bars, text), blocking) for (text, blocking), bars in said.items()
+        )
+
+
+def _sentence(bars: Sequence[str], text: str) -> str:
+    return f"{name_bars(bars)}: {text}" if bars else text
+
+
+def name_bars(labels: Iterable[str]) -> str:
+    """Name bars for people: the first few, and how many more."""
+    distinct = list(dict.fromkeys(labels))
+    named = ", ".join(distinct[:LISTED])
+    more = len(distinct) - LISTED
+    return (
+        f"bar {named}"
+        if len(distinct) == 1
+        else (f"bars {named} and {more} more" if more > 0 else f"bars {named}")
+    )

@@ -1,0 +1,86 @@
+"""Which beam a bar belongs to, by the model's relations."""
+
+from __future__ import annotations
+
+from collections import defaultdict
+from collections.abc import Collection, Mapping, Sequence
+from dataclasses import dataclass
+from typing import Any, Literal
+
+from ifccheck.ifc.relations import Relations
+
+Tie = Literal["part", "beside", "elsewhere", "loose"]
+"""Part of the beam, beside it in an assembly, part of something else, or tied to nothing."""
+
+GATHERING = ("IfcElementAssembly", "IfcBeam")
+"""Classes whose parts may still reinforce another beam: an assembly, and a beam out of scope."""
+
+
+@dataclass(frozen=True, slots=True)
+class Host:
+    """How a bar is tied, and the beams that it may belong to."""
+
+    tie: Tie
+    beams: tuple[int, ...] = ()
+
+
+LOOSE = Host("loose")
+ELSEWHERE = Host("elsewhere")
+
+
+class Hosts:
+    """Finds the beams that bars may belong to."""
+
+    def __init__(self, file: Any, relations: Relations, beams: Collection[int]) -> None:
+        self._file = file
+        self._relations = relations
+        self._beams = frozenset(beams)
+        self._wholes = _all_wholes(relations.parts)
+        self._known: dict[int, Host] = {}
+
+    def of(self, step_id: int) -> Host:
+        """Return how an element is tied to the beams."""
+        wholes = self._wholes.get(step_id)
+        if not wholes:
+            return LOOSE
+        if len(wholes) == 1:
+            return self._through(wholes[0], frozenset((step_id,)))
+        return _strongest([self._through(whole, frozenset((step_id,))) for whole in wholes])
+
+    def _through(self, whole: int, seen: frozenset[int]) -> Host:
+        if whole in seen:
+            return LOOSE
+        if whole not in self._known:
+            self._known[whole] = self._find(whole, seen | {whole})
+        return self._known[whole]
+
+    def _find(self, whole: int, seen: frozenset[int]) -> Host:
+        if whole in self._beams:
+            return Host("part", (whole,))
+        above = _strongest([self._through(one, seen) for one in self._wholes.get(whole, ())])
+        if above.tie == "part":
+            return above
+        entity = self._file.by_id(whole)
+        if not any(entity.is_a(name) for name in GATHERING):
+            return ELSEWHERE if entity.is_a("IfcElement") else LOOSE
+        beside = sorted(self._beams.intersection(self._relations.descendants(whole)))
+        return Host("beside", tuple(beside)) if beside else above
+
+
+def _strongest(hosts: Sequence[Host]) -> Host:
+    for tie in ("part", "beside", "elsewhere"):
+        found = [host for host in hosts if host.tie == tie]
+        if found:
+            beams = dict.fromkeys(beam for host in found for beam in host.beams)
+            return Host(found[0].tie, tuple(beams))
+    return LOOSE
+
+
+def _all_wholes(parts: Mapping[int, Sequence[int]]) -> Mapping[int, Sequence[int]]:
+    """Every whole of a part; a part may be named by several relations."""
+    wholes: dict[int, list[int]] = defaultdict(list)
+    for whole, members in parts.items():
+        for part in members:
+            if whole not in wholes[part]:
+                wholes[part].append(whole)
+    return wholes

@@ -1,0 +1,126 @@
+"""Centre lines of bars in the axes of their beams, cut into straight pieces and chords."""
+
+from __future__ import annotations
+
+import math
+from dataclasses import dataclass
+
+import numpy as np
+import numpy.typing as npt
+
+from ifccheck.ifc.bar_paths import Bools, Floats, Ints, Samples
+
+LEAST_STEP = 1e-3
+"""Shorter steps [mm] of a centre line are left out."""
+COLLINEAR = math.cos(math.radians(0.5))
+"""Cosine of the turn below which two straight steps are one piece."""
+
+
+@dataclass(frozen=True, slots=True)
+class CentreLines:
+    """Bars in the axes of the beam that each is looked at in; one row per bar (R)."""
+
+    points: Floats
+    """(N, 3) [mm]: along the beam, to the left, up from the soffit."""
+    arc: Bools
+    """The step from this point to the next is a chord of an arc (N)."""
+    row: Ints
+    """Bar of each point (N)."""
+    first: Ints
+    """First point of each bar, and N at the end (R + 1)."""
+    diameter: Floats
+    """[mm] (R)"""
+
+    @property
+    def count(self) -> int:
+        """How many bars."""
+        return len(self.first) - 1
+
+    def lowest(self) -> Floats:
+        """Least coordinates of each bar's centre line (R, 3)."""
+        return np.minimum.reduceat(self.points, self.first[:-1], axis=0)
+
+    def highest(self) -> Floats:
+        """Greatest coordinates of each bar's centre line (R, 3)."""
+        return np.maximum.reduceat(self.points, self.first[:-1], axis=0)
+
+
+def place(
+    samples: Samples, path: Ints, rotation: Floats, translation: Floats, diameter: Floats
+) -> CentreLines:
+    """Place sampled paths: one row per bar, with its path (R), rotation (R, 3, 3) and
+    translation (R, 3)."""
+    counts = samples.first[path + 1] - samples.first[path]
+    first = np.concatenate(([0], np.cumsum(counts))).astype(np.intp)
+    row = np.repeat(np.arange(len(path)), counts)
+    source = np.arange(first[-1]) - first[row] + samples.first[path][row]
+    points = np.einsum("nij,nj->ni", rotation[row], samples.points[source]) + translation[row]
+    return CentreLines(points, samples.arc[source], row, first, diameter)
+
+
+@dataclass(frozen=True, slots=True)
+class Pieces:
+    """Straight pieces and chords of arcs, in order along each bar (P)."""
+
+    row: Ints
+    start: Floats
+    """(P, 3) [mm]"""
+    end: Floats
+    direction: Floats
+    """Unit vector (P, 3)"""
+    length: Floats
+    straight: Bools
+    """False for a chord of an arc."""
+
+    def neighbour(self, step: int) -> Ints:
+        """The piece before (-1) or after (+1) on the same bar, -1 where there is none (P)."""
+        index = np.arange(len(self.row)) + step
+        inside = (index >= 0) & (index < len(self.row))
+        clipped = np.clip(index, 0, max(len(self.row) - 1, 0))
+        return np.where(inside & (self.row[clipped] == self.row), clipped, -1)
+
+    def merged(self, begins: Bools) -> Pieces:
+        """Join pieces: each run from one that ``begins`` to the next becomes one."""
+        first = np.flatnonzero(begins)
+        last = np.concatenate((first[1:] - 1, [len(self.row) - 1])).astype(np.intp)
+        return make_pieces(
+            self.row[first], self.start[first], self.end[last[: len(first)]], self.straight[first]
+        )
+
+
+def make_pieces(row: Ints, start: Floats, end: Floats, straight: Bools) -> Pieces:
+    """Give pieces their direction and length."""
+    along = end - start
+    length = np.sqrt((along**2).sum(axis=1))
+    direction = along / np.where(length > 0.0, length, 1.0)[:, None]
+    return Pieces(row, start, end, direction, length, straight)
+
+
+def cut_into_pieces(lines: CentreLines) -> Pieces:
+    """Cut centre lines into straight pieces, joining straight steps in one line."""
+    index = np.flatnonzero(lines.row[1:] == lines.row[:-1])
+    step = lines.points[index + 1] - lines.points[index]
+    index = index[(step**2).sum(axis=1) > LEAST_STEP**2]
+    steps = make_pieces(
+        lines.row[index], lines.points[index], lines.points[index + 1], ~lines.arc[index]
+    )
+    return steps.merged(~_goes_on(steps, COLLINEAR))
+
+
+def _goes_on(pieces: Pieces, cosine: float) -> Bools:
+    """Whether each piece goes on straight from the one before."""
+    result = np.zeros(len(pieces.row), dtype=bool)
+    turn = (pieces.direction[1:] * pieces.direction[:-1]).sum(axis=1)
+    result[1:] = (
+        (pieces.row[1:] == pieces.row[:-1])
+        & pieces.straight[1:]
+        & pieces.straight[:-1]
+        & (turn >= cosine)
+    )
+    return result
+
+
+def count_by_row(row: Ints, mask: Bools, rows: int) -> Ints:
+    """How many entries of ``mask`` are true on each bar."""
+    counted: npt.NDArray[np.intp] = np.bincount(row[mask], minlength=rows)
+    return counted

@@ -1,0 +1,178 @@
+"""Which strand is looked at in which beam: by relations, and by place where they leave it open."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator, Mapping
+from dataclasses import dataclass
+
+import numpy as np
+
+from ifccheck.ifc.bar_hosts import Host
+from ifccheck.ifc.bar_paths import Bools, Floats, Ints, Samples, sample
+from ifccheck.ifc.bar_pieces import CentreLines, cut_into_pieces, place
+from ifccheck.ifc.bar_table import BarTable
+from ifccheck.ifc.beam_frames import BeamFrames, part_inside
+
+INSIDE_TOLERANCE = 5.0
+"""A bar may lie outside the box of its beam by this [mm] and still lie in it."""
+INSIDE_SHARE = 0.5
+"""Part of its length from which on a bar lies in a beam."""
+NOTICED_RUN, NOTICED_LENGTH = 20.0, 300.0
+"""A bar that no relation ties is noticed in a beam from this many diameters and this length [mm]
+along it, however far it goes on."""
+
+
+@dataclass(frozen=True, slots=True)
+class Rows:
+    """Strands, each in one beam (R)."""
+
+    strand: Ints
+    beam: Ints
+
+    def take(self, kept: Ints | Bools) -> Rows:
+        """Some of the rows."""
+        return Rows(self.strand[kept], self.beam[kept])
+
+
+@dataclass(frozen=True, slots=True)
+class Found:
+    """Strands by beam."""
+
+    tied: Rows
+    """Bars of the beam."""
+    astray: Rows
+    """Beside the beam in its assembly, but in none of the beams there."""
+    loose: Rows
+    """In the beam, but tied to nothing."""
+
+
+class BarPlaces:
+    """Places the strands of a table in the axes of beams."""
+
+    def __init__(self, table: BarTable, frames: BeamFrames) -> None:
+        self.table = table
+        self.frames = frames
+        self.samples: Samples = sample(table.paths)
+        thick = np.array([size.diameter for size in table.sizes], dtype=float)
+        sizes = np.array([bar.size for bar in table.bars], dtype=np.intp)
+        self.diameter: Floats = thick[sizes][table.bar] if len(thick) else np.zeros(0)
+
+    def label(self, strand: int) -> str:
+        """What people call the bar of a strand."""
+        return self.table.bars[int(self.table.bar[strand])].label
+
+    def centre_lines(self, rows: Rows) -> CentreLines:
+        """The centre lines of strands in the axes of their beams."""
+        to_beam = self.frames.rotation[rows.beam]
+        rotation = to_beam @ self.table.rotation[rows.strand]
+        offset = self.table.translation[rows.strand] - self.frames.origin[rows.beam]
+        translation = np.einsum("rij,rj->ri", to_beam, offset)
+        path, diameter = self.table.path[rows.strand], self.diameter[rows.strand]
+        return place(self.samples, path, rotation, translation, diameter)
+
+    def world_lines(self, strands: Ints) -> CentreLines:
+        """The centre lines of strands in the building."""
+        return place(
+            self.samples,
+            self.table.path[strands],
+            self.table.rotation[strands],
+            self.table.translation[strands],
+            self.diameter[strands],
+        )
+
+
+def find_rows(places: BarPlaces, hosts: Mapping[int, Host]) -> Found:
+    """Find the beams of all strands; ``hosts`` by the STEP id of the bar."""
+    tied = list(_candidates(places, hosts, "part"))
+    beside = list(_candidates(places, hosts, "beside"))
+    chosen, astray = _nearest(places, _rows(beside))
+    rows = _rows(tied)
+    tied_rows = Rows(
+        np.concatenate((rows.strand, chosen.strand)), np.concatenate((rows.beam, chosen.beam))
+    )
+    return Found(tied_rows, astray, _noticed(places, hosts))
+
+
+def _candidates(
+    places: BarPlaces, hosts: Mapping[int, Host], tie: str
+) -> Iterator[tuple[int, int]]:
+    index = places.frames.index()
+    bars = places.table.bars
+    for strand, bar in enumerate(places.table.bar.tolist()):
+        host = hosts[bars[bar].step_id]
+        if host.tie == tie:
+            for beam in host.beams:
+                yield strand, index[beam]
+
+
+def _rows(pairs: list[tuple[int, int]]) -> Rows:
+    strand, beam = np.array(pairs, dtype=np.intp).reshape(-1, 2).T
+    return Rows(strand, beam)
+
+
+def _inside(places: BarPlaces, rows: Rows) -> tuple[Floats, Floats]:
+    """Part of each row's length that lies in its beam, and how far that runs along it [mm]."""
+    if not len(rows.strand):
+        return np.zeros(0), np.zeros(0)
+    pieces = cut_into_pieces(places.centre_lines(rows))
+    low, high = places.frames.boxes()
+    beam = rows.beam[pieces.row]
+    enter, leave = part_inside(
+        pieces.start, pieces.end, low[beam] - INSIDE_TOLERANCE, high[beam] + INSIDE_TOLERANCE
+    )
+    inside = (leave - enter) * pieces.length
+    count = len(rows.strand)
+    total = np.bincount(pieces.row, pieces.length, count)
+    along = np.bincount(pieces.row, inside * np.abs(pieces.direction[:, 0]), count)
+    held = np.bincount(pieces.row, inside, count)
+    return np.asarray(held / np.maximum(total, 1e-9)), np.asarray(along, dtype=float)
+
+
+def _nearest(places: BarPlaces, rows: Rows) -> tuple[Rows, Rows]:
+    """Of the beams beside each strand the one that holds most of it, and strands in none."""
+    share, _ = _inside(places, rows)
+    order = np.lexsort((rows.beam, -share, rows.strand))
+    best = np.ones(len(order), dtype=bool)
+    best[1:] = np.diff(rows.strand[order]) != 0
+    first = order[best]
+    held = first[share[first] >= INSIDE_SHARE]
+    lost = ~np.isin(rows.strand, rows.strand[held])
+    return rows.take(held), rows.take(lost)
+
+
+def _noticed(places: BarPlaces, hosts: Mapping[int, Host]) -> Rows:
+    bars = places.table.bars
+    free = np.array([hosts[bar.step_id].tie == "loose" for bar in bars], dtype=bool)
+    strands = np.flatnonzero(free[places.table.bar]) if len(bars) else np.zeros(0, dtype=np.intp)
+    if not len(strands):
+        return _rows([])
+    rows = _overlapping(places, strands)
+    share, along = _inside(places, rows)
+    least = np.maximum(NOTICED_RUN * places.diameter[rows.strand], NOTICED_LENGTH)
+    return rows.take((share >= INSIDE_SHARE) | (along >= least))
+
+
+def _overlapping(places: BarPlaces, strands: Ints) -> Rows:
+    """Pairs of strands and beams whose upright boxes in the building overlap."""
+    lines = places.world_lines(strands)
+    order = np.argsort(lines.lowest()[:, 0], kind="stable")
+    low, high = lines.lowest()[order], lines.highest()[order]
+    longest = float((high[:, 0] - low[:, 0]).max())
+    beam_low, beam_high = _upright_boxes(places.frames)
+    begin = np.searchsorted(low[:, 0], beam_low[:, 0] - longest)
+    stop = np.searchsorted(low[:, 0], beam_high[:, 0], side="right")
+    found: list[Ints] = []
+    for beam, (first, last) in enumerate(zip(begin.tolist(), stop.tolist(), strict=True)):
+        near = (low[first:last] <= beam_high[beam]) & (high[first:last] >= beam_low[beam])
+        hit = order[first + np.flatnonzero(near.all(axis=1))]
+        found.append(np.stack([strands[hit], np.full(len(hit), beam)], axis=1))
+    pairs = np.concatenate(found).astype(np.intp) if found else np.zeros((0, 2), dtype=np.intp)
+    return Rows(pairs[:, 0], pairs[:, 1])
+
+
+def _upright_boxes(frames: BeamFrames) -> tuple[Floats, Floats]:
+    low, high = frames.boxes()
+    middle, half = (low + high) / 2.0, (high - low) / 2.0 + INSIDE_TOLERANCE
+    centre = frames.origin + np.einsum("bij,bi->bj", frames.rotation, middle)
+    reach = np.einsum("bij,bi->bj", np.abs(frames.rotation), half)
+    return centre - reach, centre + reach

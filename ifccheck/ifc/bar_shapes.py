@@ -1,0 +1,143 @@
+"""The shapes of bars: which centre lines a product's representation sweeps, and where."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+
+from ifccheck.ifc.bar_paths import Path, read_path, read_swept_path
+from ifccheck.ifc.entity import Entity, UnreadableError, get
+from ifccheck.ifc.placements import IDENTITY, Matrix, Placements, unit
+from ifccheck.ifc.units import ModelUnits
+
+SAME_SCALE = 1e-6
+"""Relative difference within which a mapped bar is not stretched."""
+DEEPEST_MAPPING = 8
+"""Mapped items within mapped items that are followed."""
+
+
+@dataclass(frozen=True, slots=True)
+class Strand:
+    """One bar of a product: an index into ``BarShapes.paths``, placed in the product's axes."""
+
+    path: int
+    matrix: Matrix
+    diameter: float | None
+    """Swept diameter [mm]; None where only a centre line is given."""
+
+
+class BarShapes:
+    """The shapes of a model's bars; a shape that many bars share is read once."""
+
+    def __init__(self, units: ModelUnits, placements: Placements) -> None:
+        self.paths: list[Path] = []
+        self._units = units
+        self._placements = placements
+        self._solids: dict[int, Strand] = {}
+        self._maps: dict[int, tuple[Strand, ...]] = {}
+        self._targets: dict[int, tuple[Matrix, float]] = {}
+
+    def of(self, shape: Entity | None) -> tuple[Strand, ...]:
+        """Return the bars of a product's shape; its body, or else its axis.
+
+        Raises UnreadableError where there is no shape, or one of a kind that is not read.
+        """
+        if shape is None:
+            raise UnreadableError("has no shape")
+        body, axis = None, None
+        for representation in shape[2]:
+            identifier = representation[1]
+            if identifier == "Axis":
+                axis = axis or representation
+            elif body is None or identifier == "Body":
+                body = representation
+        if body is None and axis is None:
+            raise UnreadableError("has no shape")
+        try:
+            return self._representation(axis if body is None else body, 0)
+        except UnreadableError:
+            if body is None or axis is None:
+                raise
+            return self._representation(axis, 0)
+
+    def _representation(self, representation: Entity, depth: int) -> tuple[Strand, ...]:
+        items = representation[3]
+        if len(items) == 1:
+            return self._item(items[0], depth)
+        return tuple(strand for item in items for strand in self._item(item, depth))
+
+    def _item(self, item: Entity, depth: int) -> tuple[Strand, ...]:
+        if item.is_a() == "IfcMappedItem":
+            return self._mapped(item, depth)
+        step_id = item.id()
+        if step_id not in self._solids:
+            self._solids[step_id] = self._solid(item)
+        return (self._solids[step_id],)
+
+    def _solid(self, item: Entity) -> Strand:
+        if item.is_a("IfcSweptDiskSolid"):
+            path = read_swept_path(item[0], item[3], item[4], self._units)
+            return self._strand(path, IDENTITY, 2.0 * item[1] * self._units.length)
+        if item.is_a("IfcExtrudedAreaSolid"):
+            return self._extruded(item)
+        if item.is_a("IfcCurve"):
+            return self._strand(read_path(item, self._units), IDENTITY, None)
+        raise UnreadableError(f"has a body of kind {item.is_a()}, which is not read yet")
+
+    def _strand(self, path: Path, matrix: Matrix, diameter: float | None) -> Strand:
+        self.paths.append(path)
+        return Strand(len(self.paths) - 1, matrix, diameter)
+
+    def _extruded(self, solid: Entity) -> Strand:
+        """A circle extruded: a straight bar."""
+        profile = solid[0]
+        if profile.is_a() != "IfcCircleProfileDef":
+            raise UnreadableError(f"is extruded from an {profile.is_a()}, which is not read yet")
+        centre = self._placements.axes(get(profile, "Position"))[:3, 3]
+        along = unit(solid[2][0]) * (solid[3] * self._units.length)
+        ends = tuple((float(x), float(y), float(z)) for x, y, z in (centre, centre + along))
+        diameter = 2.0 * get(profile, "Radius") * self._units.length
+        return self._strand(Path(ends), self._placements.axes(solid[1]), diameter)
+
+    def _mapped(self, item: Entity, depth: int) -> tuple[Strand, ...]:
+        if depth >= DEEPEST_MAPPING:
+            raise UnreadableError("has mapped items nested too deeply")
+        source, target = item[0], item[1]
+        step_id = source.id()
+        if step_id not in self._maps:
+            self._maps[step_id] = self._mapped_source(source, depth)
+        strands = self._maps[step_id]
+        matrix, scale = self._target(target)
+        if matrix is IDENTITY and scale == 1.0:
+            return strands
+        return tuple(_moved(strand, matrix, scale) for strand in strands)
+
+    def _mapped_source(self, source: Entity, depth: int) -> tuple[Strand, ...]:
+        strands = self._representation(source[1], depth + 1)
+        origin = self._placements.axes(source[0])
+        if origin is IDENTITY:
+            return strands
+        return tuple(_moved(strand, origin, 1.0) for strand in strands)
+
+    def _target(self, target: Entity) -> tuple[Matrix, float]:
+        step_id = target.id()
+        if step_id not in self._targets:
+            matrix = self._placements.operator(target)
+            still = np.array_equal(matrix, IDENTITY)
+            self._targets[step_id] = (IDENTITY if still else matrix, _enlargement(matrix))
+        return self._targets[step_id]
+
+
+def _moved(strand: Strand, matrix: Matrix, scale: float) -> Strand:
+    diameter = None if strand.diameter is None else strand.diameter * scale
+    placed = matrix if strand.matrix is IDENTITY else matrix @ strand.matrix
+    return Strand(strand.path, placed, diameter)
+
+
+def _enlargement(matrix: Matrix) -> float:
+    """How much a transformation enlarges, the same in all directions."""
+    scales = np.sqrt((matrix[:3, :3] ** 2).sum(axis=0))
+    if scales.max() - scales.min() > SAME_SCALE * scales.max():
+        raise UnreadableError("is mapped with a stretch in one direction, which is not read")
+    return 1.0 if abs(scales[0] - 1.0) <= SAME_SCALE else float(scales[0])

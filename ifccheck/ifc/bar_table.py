@@ -1,0 +1,164 @@
+"""The bars of a model gathered into arrays: a list of products, and one row per strand."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable, Mapping, Sequence
+from dataclasses import dataclass
+
+import numpy as np
+
+from ifccheck.ifc.bar_data import BarData
+from ifccheck.ifc.bar_paths import Floats, Ints, Path
+from ifccheck.ifc.bar_shapes import BarShapes
+from ifccheck.ifc.bar_sizes import BarSize, Grade
+from ifccheck.ifc.context import Context
+from ifccheck.ifc.entity import Entity, UnreadableError
+from ifccheck.ifc.placements import IDENTITY, Matrix
+
+NO_OFFSET = (0.0, 0.0, 0.0)
+
+
+@dataclass(frozen=True, slots=True)
+class Bar:
+    """One product that is a bar, or several equal bars."""
+
+    step_id: int
+    name: str
+    role: str
+    """LIGATURE, MAIN ..., of the occurrence or else of its type; "" where neither tells."""
+    size: int
+    """Index into ``BarTable.sizes``."""
+    grade: int
+    """Index into ``BarTable.grades``."""
+
+    @property
+    def label(self) -> str:
+        """What people call it."""
+        return f"{self.name} #{self.step_id}" if self.name else f"#{self.step_id}"
+
+
+@dataclass(frozen=True, slots=True)
+class BarTable:
+    """The bars of a model and their centre lines in the building."""
+
+    bars: Sequence[Bar]
+    sizes: Sequence[BarSize]
+    grades: Sequence[Grade]
+    paths: Sequence[Path]
+    bar: Ints
+    """Bar of each strand (S)."""
+    path: Ints
+    rotation: Floats
+    """(S, 3, 3)"""
+    translation: Floats
+    """(S, 3) [mm]"""
+    unreadable: Mapping[int, str]
+    """What is wrong with products that could not be read, by STEP id."""
+
+
+class _Matrices:
+    """Distinct matrices, numbered."""
+
+    def __init__(self) -> None:
+        self.all: list[Matrix] = []
+        self._index: dict[int, int] = {}
+
+    def index(self, matrix: Matrix) -> int:
+        """Number of a matrix; the matrix is kept, so its identity stays its own."""
+        found = self._index.get(id(matrix))
+        if found is None:
+            found = self._index[id(matrix)] = len(self.all)
+            self.all.append(matrix)
+        return found
+
+
+class _Gathering:
+    def __init__(self, context: Context) -> None:
+        self._context = context
+        self._parents: dict[int, int] = {}
+        self.shapes = BarShapes(context.units, context.placements)
+        self.data = BarData(context)
+        self.bars: list[Bar] = []
+        self.outer, self.inner = _Matrices(), _Matrices()
+        self.rows: list[tuple[int, int, int, int]] = []
+        """Bar, path, outer matrix and inner matrix of each strand."""
+        self.offsets: list[Sequence[float]] = []
+        """Place of each bar in its outer matrix, in units of the model."""
+        self._whole_place = self.outer.index(IDENTITY)
+
+    def add(self, product: Entity) -> None:
+        """Add one product; raises UnreadableError."""
+        strands = self.shapes.of(product[6])
+        outer, offset = self._placement(product[5])
+        step_id = product.id()
+        swept = min((s.diameter for s in strands if s.diameter is not None), default=None)
+        role, size, grade = self.data.of(product, step_id, swept)
+        if size < 0 or not strands:
+            raise UnreadableError("is of a diameter that nobody states")
+        row = len(self.bars)
+        self.bars.append(Bar(step_id, str(product[2] or product[7] or ""), role, size, grade))
+        self.offsets.append(offset)
+        for strand in strands:
+            self.rows.append((row, strand.path, outer, self.inner.index(strand.matrix)))
+
+    def _placement(self, placement: Entity | None) -> tuple[int, Sequence[float]]:
+        """An outer matrix, and where a bar stands in it; most bars are only moved, not turned."""
+        if placement is None:
+            return self._whole_place, NO_OFFSET
+        moved = _only_moved(placement)
+        if moved is None:
+            return self.outer.index(self._context.placements.placement(placement)), NO_OFFSET
+        parent = placement[0]
+        if parent is None:
+            return self._whole_place, moved
+        step_id = parent.id()
+        if step_id not in self._parents:
+            matrix = self._context.placements.placement(parent)
+            self._parents[step_id] = self.outer.index(matrix)
+        return self._parents[step_id], moved
+
+
+def _only_moved(placement: Entity) -> Sequence[float] | None:
+    """The move of a local placement that does not turn; None for any other placement."""
+    if placement.is_a() != "IfcLocalPlacement":
+        return None
+    axes = placement[1]
+    if axes.is_a() != "IfcAxis2Placement3D" or axes[1] is not None or axes[2] is not None:
+        return None
+    location = axes[0]
+    if location.is_a() != "IfcCartesianPoint":
+        return None
+    moved: Sequence[float] = location[0]
+    return moved if len(moved) == 3 else None
+
+
+def gather_bars(context: Context, products: Iterable[Entity]) -> BarTable:
+    """Gather bars: their data, and the centre line of each strand with its place."""
+    found = _Gathering(context)
+    unreadable: dict[int, str] = {}
+    for product in products:
+        try:
+            found.add(product)
+        except UnreadableError as error:
+            unreadable[product.id()] = str(error)
+    return _table(found, unreadable, context.units.length)
+
+
+def _table(found: _Gathering, unreadable: Mapping[int, str], scale: float) -> BarTable:
+    bar, path, outer, inner = np.array(found.rows, dtype=np.intp).reshape(-1, 4).T
+    outers = np.array(found.outer.all).reshape(-1, 4, 4)[outer]
+    inners = np.array(found.inner.all).reshape(-1, 4, 4)[inner]
+    offsets = np.array(found.offsets, dtype=float).reshape(-1, 3)[bar] * scale
+    place = offsets + inners[:, :3, 3]
+    turned = np.einsum("sij,sj->si", outers[:, :3, :3], place)
+    return BarTable(
+        bars=found.bars,
+        sizes=found.data.sizes,
+        grades=found.data.grades,
+        paths=found.shapes.paths,
+        bar=bar,
+        path=path,
+        rotation=outers[:, :3, :3] @ inners[:, :3, :3],
+        translation=turned + outers[:, :3, 3],
+        unreadable=unreadable,
+    )

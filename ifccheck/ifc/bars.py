@@ -1,0 +1,179 @@
+"""Longitudinal bars: straight runs along the beam, how their ends are anchored, equal bars."""
+
+from __future__ import annotations
+
+import math
+from dataclasses import dataclass
+
+import numpy as np
+
+from ifccheck.ifc.bar_paths import Bools, Floats, Ints
+from ifccheck.ifc.bar_pieces import CentreLines, Pieces
+
+ALONG = math.cos(math.radians(2.0))
+"""Cosine of the angle to the axis within which a piece runs along the beam."""
+LEAST_RUN = 20.0
+"""A run along the beam is longer than this many diameters."""
+SQUARE_TURN = math.cos(math.radians(88.0))
+"""Cosine of the turn from which on a bend counts as one of 90 degrees."""
+FULL_TURN = math.cos(math.radians(177.0))
+"""Cosine of the turn from which on a bend counts as one of 180 degrees."""
+SQUARE_HOOK_TAIL = 12.0
+"""Straight extension of a standard 90 degree hook in diameters (CSA A23.1, from memory)."""
+FULL_HOOK_TAIL, FULL_HOOK_LEAST = 4.0, 60.0
+"""Straight extension of a standard 180 degree hook: 4 diameters, at least 60 mm (the same)."""
+TAIL_TOLERANCE = 0.99
+"""Part of a standard extension that passes for the whole: rounding of models."""
+LONGEST_CHORD = 6.0
+"""A piece of a bend that is modelled by chords is no longer than this many diameters."""
+BEND_DIAMETERS, BEND_RADII = (26.0, 36.0), (3.6, 4.7, 5.9)
+"""Radius of the centre line of a least bend, in diameters, up to each diameter [mm]
+(CSA A23.1, grade 400R, from memory): what a corner drawn sharp takes from a tail."""
+LEVEL = 2.0
+"""A run rises by no more than this [mm] and is still level."""
+SAME_LAYER, SAME_END = 1.0, 5.0
+"""Bars of one layer differ by no more than this in height, and at their ends [mm]."""
+SAME_BAR = 1.0
+"""Two bars nearer to each other than this [mm] are one bar modelled twice."""
+
+
+@dataclass(frozen=True, slots=True)
+class Runs:
+    """Runs of bars along the beam (M)."""
+
+    row: Ints
+    """Bar that each is a run of."""
+    start: Floats
+    """x of the less end [mm]: the outside of a hook, else the end of the straight run."""
+    end: Floats
+    y: Floats
+    lowest: Floats
+    """Least height of the centre line above the soffit [mm]."""
+    highest: Floats
+    start_hook: Bools
+    end_hook: Bools
+    poor_bend: Bools
+    """The bar goes on round a bend at either end, short of a standard hook."""
+
+
+def find_runs(lines: CentreLines, pieces: Pieces) -> Runs:
+    """Find the runs along the beam: pieces within 2 degrees of the axis, 20 diameters long."""
+    along = pieces.straight & (np.abs(pieces.direction[:, 0]) >= ALONG)
+    before = pieces.neighbour(-1)
+    follows = along & (before >= 0) & along[before]
+    follows &= pieces.direction[:, 0] * pieces.direction[before, 0] > 0.0
+    joined = pieces.merged(~follows)
+    first = np.flatnonzero(~follows)
+    heights = np.stack([pieces.start[:, 2], pieces.end[:, 2]])
+    lowest = np.minimum.reduceat(heights.min(axis=0), first) if first.size else np.zeros(0)
+    highest = np.maximum.reduceat(heights.max(axis=0), first) if first.size else np.zeros(0)
+    run = np.flatnonzero(along[first] & (joined.length > LEAST_RUN * lines.diameter[joined.row]))
+    return _ended(joined, run, lines.diameter, lowest[run], highest[run])
+
+
+def _ended(pieces: Pieces, run: Ints, diameter: Floats, lowest: Floats, highest: Floats) -> Runs:
+    ends = [_follow_end(pieces, run, diameter[pieces.row[run]], step) for step in (-1, 1)]
+    forward = pieces.direction[run, 0] > 0.0
+    (back_x, back_hook, back_bend), (fore_x, fore_hook, fore_bend) = ends
+    return Runs(
+        row=pieces.row[run],
+        start=np.where(forward, back_x, fore_x),
+        end=np.where(forward, fore_x, back_x),
+        y=(pieces.start[run, 1] + pieces.end[run, 1]) / 2.0,
+        lowest=lowest,
+        highest=highest,
+        start_hook=np.where(forward, back_hook, fore_hook),
+        end_hook=np.where(forward, fore_hook, back_hook),
+        poor_bend=back_bend | fore_bend,
+    )
+
+
+def _follow_end(
+    pieces: Pieces, run: Ints, diameter: Floats, step: int
+) -> tuple[Floats, Bools, Bools]:
+    """Follow bars beyond one end of their runs: x of the end, whether hooked, whether bent."""
+    outward = pieces.direction[run] * step
+    sign = np.sign(outward[:, 0])
+    far = pieces.end if step > 0 else pieces.start
+    tip = far[run, 0] * sign
+    reach = tip.copy()
+    tail = _straight_tails(pieces, diameter, run)
+    neighbour = pieces.neighbour(step)
+    at, active = neighbour[run], neighbour[run] >= 0
+    hooked, bent = np.zeros(len(run), dtype=bool), np.zeros(len(run), dtype=bool)
+    while active.any():
+        turn = (pieces.direction[at] * step * outward).sum(axis=1)
+        straight = pieces.straight[at]
+        reach = np.where(active, np.maximum(reach, far[at, 0] * sign), reach)
+        hook = active & straight & _is_hook(turn, tail[at], diameter)
+        inclined = straight & (turn > SQUARE_TURN) & (pieces.length[at] > LONGEST_CHORD * diameter)
+        hooked |= hook
+        bent |= active & (turn <= SQUARE_TURN)
+        active = active & ~hook & ~inclined & (neighbour[at] >= 0)
+        at = np.where(active, neighbour[at], at)
+    x = np.where(hooked, reach + diameter / 2.0, tip) * sign
+    return x, hooked, bent & ~hooked
+
+
+def _is_hook(turn: Floats, tail: Floats, diameter: Floats) -> Bools:
+    square = (turn <= SQUARE_TURN) & (tail >= TAIL_TOLERANCE * SQUARE_HOOK_TAIL * diameter)
+    least = TAIL_TOLERANCE * np.maximum(FULL_HOOK_TAIL * diameter, FULL_HOOK_LEAST)
+    return square | ((turn <= FULL_TURN) & (tail >= least))
+
+
+def _straight_tails(pieces: Pieces, diameter: Floats, run: Ints) -> Floats:
+    """Length of each piece [mm] less what the bends at corners drawn sharp take from it."""
+    by_row = np.ones(int(pieces.row.max(initial=-1)) + 1)
+    by_row[pieces.row[run]] = diameter
+    thick = by_row[pieces.row]
+    lost = np.zeros(len(pieces.row) + 1)
+    turn = (pieces.direction[1:] * pieces.direction[:-1]).sum(axis=1)
+    sharp = (pieces.row[1:] == pieces.row[:-1]) & pieces.straight[1:] & pieces.straight[:-1]
+    half = np.arccos(np.clip(turn, -0.999, 1.0)) / 2.0
+    lost[1:-1] = np.where(sharp, bend_radius(thick[1:]) * np.tan(half), 0.0)
+    return np.asarray(pieces.length - lost[:-1] - lost[1:])
+
+
+def bend_radius(diameter: Floats) -> Floats:
+    """Return the radius of the centre line of a least bend [mm]."""
+    times = np.array(BEND_RADII)[np.searchsorted(BEND_DIAMETERS, diameter)]
+    return np.asarray(times * diameter)
+
+
+def settle_heights(runs: Runs, middle: Floats) -> tuple[Floats, Bools]:
+    """Return the height that each run is taken at, and whether it is too steep to be taken.
+
+    A run that is not level is taken at its place nearest to the middle of the section [mm] (M),
+    where it does least; one that passes the middle is not taken.
+    """
+    level = runs.highest - runs.lowest <= LEVEL
+    inner = np.where(runs.highest <= middle, runs.highest, runs.lowest)
+    steep = ~level & (runs.highest > middle) & (runs.lowest < middle)
+    return np.where(level, (runs.highest + runs.lowest) / 2.0, inner), steep
+
+
+def group(labels: Ints, values: Floats, gap: float) -> Ints:
+    """Split groups where sorted values differ by more than ``gap``; returns new labels."""
+    order = np.lexsort((values, labels))
+    split = np.ones(len(order), dtype=bool)
+    split[1:] = (np.diff(labels[order]) != 0) | (np.diff(values[order]) > gap)
+    found = np.empty(len(order), dtype=np.intp)
+    found[order] = np.cumsum(split) - 1
+    return found
+
+
+def equal_bars(labels: Ints, runs: Runs, height: Floats) -> list[Ints]:
+    """Group runs of one label that lie in one layer with equal ends.
+
+    Returns the runs of each group from right to left across the beam, groups from the
+    bottom up.
+    """
+    found = group(group(labels, height, SAME_LAYER), runs.start, SAME_END)
+    found = group(found, runs.end, SAME_END)
+    order = np.lexsort((runs.y, found))
+    return list(np.split(order, np.flatnonzero(np.diff(found[order])) + 1)) if len(order) else []
+
+
+def apart(places: Floats) -> Bools:
+    """Whether each of sorted places is apart from the one before: else it is one bar twice."""
+    return np.concatenate(([True], np.diff(places) >= SAME_BAR))

@@ -1,0 +1,257 @@
+"""Reinforcement that property sets describe: our own set, and a project's through a mapping."""
+
+from __future__ import annotations
+
+import re
+from collections.abc import Callable, Iterable, Mapping, Sequence
+from dataclasses import dataclass, replace
+from typing import Any, Literal, TypeGuard
+
+from ifccheck.beam import BarGroup, DescribedZone, Reason, Reinforcement, StirrupGroup
+from ifccheck.ifc.bar_sizes import (
+    GREATEST_YIELD,
+    LEAST_YIELD,
+    BarSize,
+    SizeSource,
+    settle_size,
+    yield_of_grade,
+)
+from ifccheck.ifc.context import Context
+from ifccheck.ifc.properties import PropertyValue, Sets
+from ifccheck.ifc.units import ModelUnits, UnitKind
+from ifccheck.notation import NotationError, bar, parse_bars, parse_stirrups
+from ifccheck.units import QuantityError, clipped, parse_quantity
+
+OWN_SET = "BeamRating_Reinforcement"
+OWN_PROPERTIES: Mapping[str, str] = {
+    "top": "TopBars",
+    "bottom": "BottomBars",
+    "side": "SideBars",
+    "stirrups": "Stirrups",
+    "cover": "Cover",
+    "bar_yield": "BarYield",
+    "stirrup_yield": "StirrupYield",
+}
+PROPERTY_KINDS: Mapping[str, UnitKind] = {"length": "length", "stress": "pressure"}
+"""The kind of unit that a model gives each quantity in."""
+LIMITS: Mapping[str, tuple[float, float]] = {
+    "cover": (0.0, 300.0),
+    "bar_yield": (LEAST_YIELD, GREATEST_YIELD),
+    "stirrup_yield": (LEAST_YIELD, GREATEST_YIELD),
+    "stirrup_diameter": (4.0, 40.0),
+    "stirrup_spacing": (25.0, 3000.0),
+    "stirrup_legs": (1.0, 24.0),
+}
+"""Least and greatest credible value [mm], [MPa]."""
+
+
+@dataclass(frozen=True, slots=True)
+class Found:
+    """A value of a field and the property that it was found in."""
+
+    value: Any
+    source: str
+
+
+class CannotReadError(Exception):
+    """A value cannot be read; the text says why."""
+
+
+def read_described(
+    context: Context, beams: Iterable[int], mapping: Mapping[str, str]
+) -> dict[int, Reinforcement]:
+    """Read what property sets tell of the reinforcement of beams, by STEP id.
+
+    ``mapping`` gives the property of a field as "Set.Property".
+    """
+    places = [(name, f"{OWN_SET}.{key}") for name, key in OWN_PROPERTIES.items()]
+    places.extend(mapping.items())
+    found: dict[int, Reinforcement] = {}
+    for beam in beams:
+        sets = context.properties.of(beam)
+        given = [(name, place, _property(sets, place)) for name, place in places]
+        stated = [(name, place, value) for name, place, value in given if _is_stated(value)]
+        if stated:
+            found[beam] = _described(stated, context.units)
+    return found
+
+
+def _property(sets: Sets, place: str) -> PropertyValue | None:
+    """The property at "Set.Property"; either name may hold dots itself."""
+    parts = place.split(".")
+    for cut in range(1, len(parts)):
+        values = sets.get(".".join(parts[:cut]))
+        if values is not None and (value := values.get(".".join(parts[cut:]))) is not None:
+            return value
+    return None
+
+
+def _is_stated(value: PropertyValue | None) -> TypeGuard[PropertyValue]:
+    """Whether a property says anything: exporters write many that are blank."""
+    return value is not None and value.value is not None and str(value.value).strip() != ""
+
+
+def _described(
+    stated: Sequence[tuple[str, str, PropertyValue]], units: ModelUnits
+) -> Reinforcement:
+    found: dict[str, Found] = {}
+    reasons: list[Reason] = []
+    for name, place, value in stated:
+        try:
+            _add(found, name, Found(READERS[name](value, units), place))
+        except CannotReadError as error:
+            text = f"property {place} {clipped(value.value)} cannot be read: {error}"
+            reasons.append(Reason(text))
+    zone = DescribedZone(
+        top=_get(found, "top"),
+        bottom=_get(found, "bottom"),
+        side=_get(found, "side"),
+        stirrups=_stirrup_group(found, reasons),
+        no_stirrups="stirrups" in found and found["stirrups"].value is None,
+        cover=_get(found, "cover"),
+        bar_yield=_get(found, "bar_yield"),
+        stirrup_yield=_get(found, "stirrup_yield"),
+        origin=", ".join(dict.fromkeys(one.source for one in found.values())),
+    )
+    return Reinforcement(source="properties", zones=(zone,), reasons=tuple(reasons))
+
+
+def _add(found: dict[str, Found], name: str, new: Found) -> None:
+    known = found.setdefault(name, new)
+    if known.value != new.value:
+        raise CannotReadError(f"{known.source} says otherwise")
+
+
+def _get(found: Mapping[str, Found], name: str) -> Any:
+    return found[name].value if name in found else None
+
+
+def _stirrup_group(found: Mapping[str, Found], reasons: list[Reason]) -> StirrupGroup | None:
+    """The stirrups from their notation, or from diameter, spacing and legs."""
+    legs = _get(found, "stirrup_legs")
+    if "stirrups" in found:
+        group: StirrupGroup | None = found["stirrups"].value
+        if group is None or legs is None or group.legs == legs:
+            return group
+        if group.legs is None:
+            return replace(group, legs=legs)
+        reasons.append(Reason(f"properties give stirrups of {group.legs} legs and of {legs}"))
+        return None
+    size, spacing = _get(found, "stirrup_diameter"), _get(found, "stirrup_spacing")
+    if size is None and spacing is None:
+        return None
+    if size is None or spacing is None:
+        missing = "diameter" if size is None else "spacing"
+        reasons.append(Reason(f"properties give stirrups without their {missing}"))
+        return None
+    return StirrupGroup(size.designation, size.diameter, size.area, spacing, legs)
+
+
+def _bar_groups(value: PropertyValue, units: ModelUnits) -> tuple[BarGroup, ...]:
+    try:
+        return parse_bars(_text(value))
+    except NotationError as error:
+        raise CannotReadError(str(error)) from None
+
+
+def _stirrup_notation(value: PropertyValue, units: ModelUnits) -> StirrupGroup | None:
+    try:
+        return parse_stirrups(_text(value))
+    except NotationError as error:
+        raise CannotReadError(str(error)) from None
+
+
+def _text(value: PropertyValue) -> str:
+    """The text of a property; the texts of a list are parts of one notation."""
+    parts = value.value if isinstance(value.value, tuple) else (value.value,)
+    if not all(isinstance(part, str) for part in parts):
+        raise CannotReadError("bar notation is a text like 3-25M")
+    return " + ".join(parts)
+
+
+def _quantity(value: PropertyValue, kind: Literal["length", "stress"], units: ModelUnits) -> float:
+    """A length or stress; a number without a unit is in the model's unit."""
+    number = value.value
+    if isinstance(number, str):
+        if not _is_number(number):
+            try:
+                return parse_quantity(number, kind)
+            except QuantityError as error:
+                raise CannotReadError(str(error)) from None
+        number = float(number)
+    elif value.kind is not None:
+        if value.number is None or value.kind != PROPERTY_KINDS[kind]:
+            raise CannotReadError(f"its unit is none of a {kind}")
+        return value.number
+    if isinstance(number, bool) or not isinstance(number, int | float):
+        raise CannotReadError(f"a {kind} is needed")
+    return number * units.factors[PROPERTY_KINDS[kind]]
+
+
+def _is_number(text: str) -> bool:
+    return re.fullmatch(r"\s*[+-]?[0-9]+(\.[0-9]*)?\s*", text) is not None
+
+
+def _within(name: str, value: float) -> float:
+    least, greatest = LIMITS[name]
+    if not least <= value <= greatest:
+        raise CannotReadError(f"{value:g} is not between {least:g} and {greatest:g}")
+    return value
+
+
+def _length_of(name: str) -> Reader:
+    def read(value: PropertyValue, units: ModelUnits) -> float:
+        return _within(name, _quantity(value, "length", units))
+
+    return read
+
+
+def _yield_of(name: str) -> Reader:
+    def read(value: PropertyValue, units: ModelUnits) -> float:
+        if isinstance(value.value, str) and not _is_number(value.value):
+            graded = yield_of_grade(value.value)
+            if graded is not None:
+                return graded
+        return _within(name, _quantity(value, "stress", units))
+
+    return read
+
+
+def _stirrup_size(value: PropertyValue, units: ModelUnits) -> BarSize:
+    if isinstance(value.value, str) and not _is_number(value.value):
+        try:
+            named = bar(value.value)
+            return BarSize(named.designation, named.diameter, named.area)
+        except NotationError as error:
+            raise CannotReadError(str(error)) from None
+    diameter = _within("stirrup_diameter", _quantity(value, "length", units))
+    size = settle_size((SizeSource("diameter", diameter),))
+    if size is None:
+        raise CannotReadError(f"{diameter:g} mm is no diameter of a bar")
+    return size
+
+
+def _legs(value: PropertyValue, units: ModelUnits) -> int:
+    number = value.value
+    if isinstance(number, str) and _is_number(number):
+        number = float(number)
+    if isinstance(number, bool) or not isinstance(number, int | float) or number != int(number):
+        raise CannotReadError("a whole number is needed")
+    return int(_within("stirrup_legs", number))
+
+
+Reader = Callable[[PropertyValue, ModelUnits], Any]
+READERS: Mapping[str, Reader] = {
+    "top": _bar_groups,
+    "bottom": _bar_groups,
+    "side": _bar_groups,
+    "stirrups": _stirrup_notation,
+    "cover": _length_of("cover"),
+    "bar_yield": _yield_of("bar_yield"),
+    "stirrup_yield": _yield_of("stirrup_yield"),
+    "stirrup_diameter": _stirrup_size,
+    "stirrup_spacing": _length_of("stirrup_spacing"),
+    "stirrup_legs": _legs,
+}
+FIELDS = tuple(READERS)
+"""The fields that a mapping may give."""

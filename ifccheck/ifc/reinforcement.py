@@ -1,0 +1,181 @@
+"""The reinforcement that a model holds for its beams, source by source."""
+
+from __future__ import annotations
+
+from collections.abc import Collection, Iterator, Mapping
+from dataclasses import replace
+
+import numpy as np
+
+from ifccheck.beam import Reason, Reinforcement, Remark
+from ifccheck.ifc.bar_findings import Findings
+from ifccheck.ifc.bar_hosts import Host, Hosts
+from ifccheck.ifc.bar_rows import BarPlaces, Rows, find_rows
+from ifccheck.ifc.bar_table import BarTable, gather_bars
+from ifccheck.ifc.beam_frames import BeamFrames, make_frames
+from ifccheck.ifc.context import BeamFrame, Context
+from ifccheck.ifc.described import read_described
+from ifccheck.ifc.entity import Entity, label
+from ifccheck.ifc.physical import Physical, reduce_bars
+
+UNREAD_STEEL = {
+    "IfcReinforcingMesh": "a mesh, which is not read yet",
+    "IfcTendon": "a tendon: prestressed beams are not rated",
+    "IfcTendonAnchor": "the anchor of a tendon: prestressed beams are not rated",
+}
+SECTIONS = "IfcReinforcementDefinitionProperties"
+
+
+def read_reinforcement(
+    context: Context, hosts: Mapping[int, BeamFrame], mapping: Mapping[str, str]
+) -> Mapping[int, tuple[Reinforcement, ...]]:
+    """Read all reinforcement of beams, by STEP id of the beam.
+
+    ``mapping`` tells which property of the project's own holds what: field to "Set.Property".
+    """
+    sections = _sections(context, hosts)
+    described = read_described(context, hosts, mapping)
+    physical, asides = _physical(context, hosts, sections.keys() | described.keys())
+    found: dict[int, tuple[Reinforcement, ...]] = {}
+    for beam in hosts:
+        sources = [source[beam] for source in (physical, sections, described) if beam in source]
+        if beam in asides:
+            sources[0] = replace(sources[0], remarks=sources[0].remarks + asides[beam])
+        found[beam] = tuple(sources)
+    return found
+
+
+def _sections(context: Context, hosts: Mapping[int, BeamFrame]) -> dict[int, Reinforcement]:
+    defined = {entity.id() for entity in _instances(context, SECTIONS)}
+    reason = Reason("reinforcement given by sections is not read yet")
+    return {
+        beam: Reinforcement(source="sections", reasons=(reason,))
+        for beam in hosts
+        if defined and defined.intersection(context.relations.property_sets(beam))
+    }
+
+
+def _instances(context: Context, name: str) -> tuple[Entity, ...]:
+    """All entities of a class; none where the schema has no such class."""
+    try:
+        return tuple(context.file.by_type(name))
+    except RuntimeError:
+        return ()
+
+
+def _physical(
+    context: Context, hosts: Mapping[int, BeamFrame], described: Collection[int]
+) -> tuple[dict[int, Reinforcement], dict[int, tuple[Remark, ...]]]:
+    """Bars by beam, and remarks on bars for beams whose reinforcement is described otherwise."""
+    if not hosts:
+        return {}, {}
+    frames = make_frames(hosts)
+    findings = Findings(lambda beam: str(context.file.by_id(frames.ids[beam])[0]))
+    finder = Hosts(context.file, context.relations, hosts)
+    _tell_unread_steel(context, finder, frames, findings)
+    products, ties = _tied_bars(context, finder)
+    table = gather_bars(context, products)
+    places = BarPlaces(table, frames)
+    found = find_rows(places, ties)
+    _tell_unreadable(table, ties, frames, findings)
+    _tell_astray(places, found.astray, findings)
+    physical = reduce_bars(places, found.tied, findings)
+    _tell_without_main_bars(found.tied, physical, findings)
+    _tell_loose(places, found.loose, findings)
+    return _collected(frames, physical, findings, described)
+
+
+def _tied_bars(context: Context, finder: Hosts) -> tuple[list[Entity], dict[int, Host]]:
+    """Bars that may lie in one of the beams, and how each is tied."""
+    products: list[Entity] = []
+    ties: dict[int, Host] = {}
+    for product in _bars(context):
+        step_id = product.id()
+        host = finder.of(step_id)
+        if host.tie != "elsewhere":
+            products.append(product)
+            ties[step_id] = host
+    return products, ties
+
+
+def _bars(context: Context) -> Iterator[Entity]:
+    """Bars, and other elements whose type is that of a bar."""
+    yield from context.file.by_type("IfcReinforcingBar")
+    types = {entity.id() for entity in _instances(context, "IfcReinforcingBarType")}
+    if types:
+        for step_id, type_id in context.relations.types.items():
+            if type_id in types:
+                product = context.file.by_id(step_id)
+                if not product.is_a("IfcReinforcingBar"):
+                    yield product
+
+
+def _tell_unread_steel(
+    context: Context, finder: Hosts, frames: BeamFrames, findings: Findings
+) -> None:
+    index = frames.index()
+    for name, what in UNREAD_STEEL.items():
+        for entity in _instances(context, name):
+            host = finder.of(entity.id())
+            if host.tie == "part" or len(host.beams) == 1:
+                for beam in host.beams:
+                    findings.reason(index[beam], f"{label(entity)} is {what}")
+
+
+def _tell_unreadable(
+    table: BarTable, ties: Mapping[int, Host], frames: BeamFrames, findings: Findings
+) -> None:
+    index = frames.index()
+    for step_id, text in table.unreadable.items():
+        for beam in ties[step_id].beams:
+            findings.reason(index[beam], text, (f"#{step_id}",))
+
+
+def _tell_astray(places: BarPlaces, astray: Rows, findings: Findings) -> None:
+    """Bars beside a beam in its assembly that lie in none of the beams there."""
+    beams_beside = np.bincount(astray.strand, minlength=1)
+    text = "lies beside it in its assembly, but in no concrete beam there"
+    for strand, beam in zip(astray.strand.tolist(), astray.beam.tolist(), strict=True):
+        bar = (places.label(strand),)
+        if beams_beside[strand] == 1:
+            findings.reason(beam, text, bar)
+        else:
+            findings.remark(beam, text, bar)
+
+
+def _tell_without_main_bars(tied: Rows, physical: Physical, findings: Findings) -> None:
+    for beam in np.unique(tied.beam).tolist():
+        if beam not in physical.bars:
+            findings.reason(beam, "no longitudinal bar is among the bars that the model ties to it")
+
+
+def _tell_loose(places: BarPlaces, loose: Rows, findings: Findings) -> None:
+    for strand, beam in zip(loose.strand.tolist(), loose.beam.tolist(), strict=True):
+        findings.remark(
+            beam,
+            "lies in the beam, but no relation ties it to it: not counted",
+            (places.label(strand),),
+        )
+
+
+def _collected(
+    frames: BeamFrames, physical: Physical, findings: Findings, described: Collection[int]
+) -> tuple[dict[int, Reinforcement], dict[int, tuple[Remark, ...]]]:
+    sources: dict[int, Reinforcement] = {}
+    asides: dict[int, tuple[Remark, ...]] = {}
+    for beam in sorted({*physical.bars, *physical.stirrups, *findings.beams()}):
+        step_id = frames.ids[beam]
+        reasons = findings.reasons(beam)
+        if beam not in physical.bars and not reasons:
+            if step_id in described:
+                asides[step_id] = findings.remarks(beam)
+                continue
+            reasons = (Reason("bars lie in it or beside it that no relation ties to it"),)
+        sources[step_id] = Reinforcement(
+            source="bars",
+            bars=physical.bars.get(beam, ()),
+            stirrups=physical.stirrups.get(beam, ()),
+            reasons=reasons,
+            remarks=findings.remarks(beam),
+        )
+    return sources, asides

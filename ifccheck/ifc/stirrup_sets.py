@@ -1,0 +1,271 @@
+"""Stirrups: bars that lie square to the beam, their legs, and zones of one spacing."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Iterator, Sequence
+from dataclasses import dataclass, replace
+
+import numpy as np
+
+from ifccheck.ifc.bar_paths import Bools, Floats, Ints
+from ifccheck.ifc.bar_pieces import CentreLines, Pieces, count_by_row
+
+SQUARE_DIAMETERS, SQUARE_SLOPE = 3.0, 0.1
+"""A stirrup reaches along the beam by no more than this many diameters, or this part of its
+extent across."""
+UPRIGHT = math.cos(math.radians(20.0))
+"""Cosine of the angle to the vertical within which a piece is a leg."""
+LEVELS = (0.25, 0.5, 0.75)
+"""Heights in the section at which legs are counted; the least number counts, so that legs which
+only lap at one height are not counted twice."""
+MEETING, HOOKED_MEETING = 2.0, 8.0
+"""A stirrup is closed where its ends, or the bends of its end hooks, are within this many
+diameters."""
+FULL_WINDING = 2.0 * math.pi * (1.0 - 1e-3)
+SAME_PLACE, SAME_PLACE_DIAMETERS = 5.0, 1.5
+"""Stirrups are at one place along the beam within this [mm], or within this many diameters."""
+SAME_SPACING = 1.05
+"""Ratio of spacings up to which gaps make one zone."""
+SAME_STEEL = 1.01
+"""Ratio of areas up to which two places hold the same steel."""
+DUPLICATE = 1.0
+"""Stirrups of which nothing differs by more than this [mm] are one that is modelled twice."""
+
+
+@dataclass(frozen=True, slots=True)
+class Ties:
+    """Bars square to the beam, one row per bar (T)."""
+
+    row: Ints
+    x: Floats
+    """Place along the beam [mm]."""
+    low: Floats
+    """Least y and z of the centre line (T, 2)."""
+    high: Floats
+    legs: Ints
+    """Legs that cross each of ``LEVELS`` (T, 3)."""
+    closed: Bools
+
+
+def lies_square(lines: CentreLines) -> Bools:
+    """Whether each bar lies in a plane square to the beam's axis (R)."""
+    extent = lines.highest() - lines.lowest()
+    across = extent[:, 1:].max(axis=1)
+    allowed = np.maximum(SQUARE_DIAMETERS * lines.diameter, SQUARE_SLOPE * across)
+    return np.asarray((extent[:, 0] <= allowed) & (across > extent[:, 0]))
+
+
+def find_ties(
+    lines: CentreLines, pieces: Pieces, square: Bools, soffit: Floats, height: Floats
+) -> Ties:
+    """Count the legs of the bars that lie square; section's soffit and height at each bar (R)."""
+    closed = is_closed(lines, pieces)
+    anchored = closed[pieces.row] | ((pieces.neighbour(-1) >= 0) & (pieces.neighbour(1) >= 0))
+    upright = pieces.straight & (np.abs(pieces.direction[:, 2]) >= UPRIGHT) & anchored
+    low, high = lines.lowest(), lines.highest()
+    legs = np.empty((lines.count, len(LEVELS)), dtype=np.intp)
+    for column, part in enumerate(LEVELS):
+        level = (soffit + part * height)[pieces.row]
+        crossing = (pieces.start[:, 2] < level) != (pieces.end[:, 2] < level)
+        counted = crossing & upright if part == 0.5 else crossing
+        legs[:, column] = count_by_row(pieces.row, counted, lines.count)
+    row = np.flatnonzero(square)
+    middle = (low[:, 0] + high[:, 0]) / 2.0
+    return Ties(row, middle[row], low[row, 1:], high[row, 1:], legs[row], closed[row])
+
+
+def is_closed(lines: CentreLines, pieces: Pieces) -> Bools:
+    """Whether each bar closes on itself, hooks both ends round one corner, or laps a full turn."""
+    first, last = lines.first[:-1], lines.first[1:] - 1
+    gap = np.sqrt(((lines.points[first] - lines.points[last]) ** 2).sum(axis=1))
+    meets = gap <= MEETING * lines.diameter
+    if len(pieces.row):
+        meets |= _hooks_meet(lines, pieces)
+    return np.asarray(meets | (np.abs(_winding(lines)) >= FULL_WINDING))
+
+
+def _hooks_meet(lines: CentreLines, pieces: Pieces) -> Bools:
+    """Whether the tails at both ends of each bar are short and their bends are at one corner."""
+    counts = count_by_row(pieces.row, np.ones(len(pieces.row), dtype=bool), lines.count)
+    end = np.cumsum(counts)
+    enough = counts >= 4
+    head, foot = np.where(enough, end - counts, 0), np.where(enough, end - 1, 0)
+    longest_tail = (lines.highest() - lines.lowest())[:, 2] / 2.0
+    short = np.maximum(pieces.length[head], pieces.length[foot]) <= longest_tail
+    between = pieces.end[head] - pieces.start[foot]
+    distance = np.sqrt((between[:, 1:] ** 2).sum(axis=1))
+    return np.asarray(enough & short & (distance <= HOOKED_MEETING * lines.diameter))
+
+
+def _winding(lines: CentreLines) -> Floats:
+    """Angle [rad] that each bar turns round the middle of its extent, in the section's plane."""
+    middle = (lines.lowest() + lines.highest()) / 2.0
+    arm = (lines.points - middle[lines.row])[:, 1:]
+    angle = np.arctan2(arm[:, 1], arm[:, 0])
+    step = np.diff(angle, append=angle[-1:])
+    step = (step + math.pi) % (2.0 * math.pi) - math.pi
+    step[lines.first[1:] - 1] = 0.0
+    return np.asarray(np.bincount(lines.row, weights=step, minlength=lines.count))
+
+
+@dataclass(frozen=True, slots=True)
+class Place:
+    """All the stirrups at one place along a beam."""
+
+    x: float
+    legs: int
+    area: float
+    """Area of all the legs [mm2]."""
+    diameter: float
+    closed: bool
+    grade: int
+    """Index of the steel; -1 where the stirrups here are of several."""
+    bottom: float
+    top: float
+    half_width: float
+    rows: Ints
+
+
+@dataclass(frozen=True, slots=True)
+class Zone:
+    """A stretch of a beam with stirrups at one spacing."""
+
+    start: float
+    end: float
+    spacing: float
+    places: tuple[Place, ...]
+    """The stirrups that bound its gaps."""
+
+    @property
+    def least(self) -> Place:
+        """The place with the least steel."""
+        return min(self.places, key=lambda place: place.area)
+
+
+def gather_places(
+    ties: Ties, beam: Ints, diameter: Floats, area: Floats, grade: Ints
+) -> tuple[dict[int, list[Place]], Ints]:
+    """Put stirrups at one place of a beam together; arrays are one row per tie.
+
+    Returns the places of each beam, and the ties that are left out as modelled twice.
+    """
+    place = _same_place(ties, beam, diameter)
+    twice = _duplicates(ties, place)
+    kept = np.setdiff1d(np.arange(len(place)), twice)
+    width = ties.high[:, 0] - ties.low[:, 0]
+    order = kept[np.lexsort((width[kept], place[kept]))]
+    places: dict[int, list[Place]] = {}
+    if not len(order):
+        return places, twice
+    first = np.flatnonzero(np.diff(place[order], prepend=-1))
+    last = np.concatenate((first[1:], [len(order)])) - 1
+    thick, grades, outside = diameter[order], grade[order], diameter[order] / 2.0
+    low, high, legs = ties.low[order], ties.high[order], ties.legs[order]
+    least_grade = np.minimum.reduceat(grades, first)
+    one_grade = least_grade == np.maximum.reduceat(grades, first)
+    reach = np.maximum(high[:, 0], -low[:, 0]) + outside
+    columns = (
+        np.add.reduceat(ties.x[order], first) / (last - first + 1),
+        np.add.reduceat(legs, first).min(axis=1),
+        np.add.reduceat(legs * area[order][:, None], first).min(axis=1),
+        np.minimum.reduceat(thick, first),
+        ties.closed[order[last]],
+        np.where(one_grade, least_grade, -1),
+        np.minimum.reduceat(low[:, 1] - outside, first),
+        np.maximum.reduceat(high[:, 1] + outside, first),
+        np.maximum.reduceat(reach, first),
+        np.split(ties.row[order], first[1:]),
+    )
+    listed = [c if isinstance(c, list) else c.tolist() for c in columns]
+    for owner, *values in zip(beam[order[first]].tolist(), *listed, strict=True):
+        places.setdefault(owner, []).append(Place(*values))
+    return places, twice
+
+
+def _same_place(ties: Ties, beam: Ints, diameter: Floats) -> Ints:
+    """Number the places along the beams, in order; stirrups at one place have one number."""
+    order = np.lexsort((ties.x, beam))
+    near = np.maximum(SAME_PLACE, SAME_PLACE_DIAMETERS * diameter[order])
+    split = np.zeros(len(order), dtype=np.intp)
+    split[1:] = (np.diff(beam[order]) != 0) | (np.diff(ties.x[order]) > near[1:])
+    place = np.empty(len(order), dtype=np.intp)
+    place[order] = np.cumsum(split)
+    return place
+
+
+def _duplicates(ties: Ties, place: Ints) -> Ints:
+    """Ties of which another with all the same extents is at the same place."""
+    extents = np.column_stack((ties.x, ties.low, ties.high))
+    crowded = np.flatnonzero(np.bincount(place, minlength=1)[place] > 1)
+    order = crowded[np.argsort(place[crowded], kind="stable")]
+    twice: list[int] = []
+    for members in np.split(order, np.flatnonzero(np.diff(place[order])) + 1):
+        apart = np.abs(extents[members][:, None] - extents[members][None]).max(axis=2)
+        earlier = np.tril(apart <= DUPLICATE, -1).any(axis=1)
+        twice.extend(members[earlier].tolist())
+    return np.array(twice, dtype=np.intp)
+
+
+def zones_of_one_spacing(places: Sequence[Place], length: float) -> list[Zone]:
+    """Divide sorted stirrups into zones of one spacing along a beam of that length [mm].
+
+    Consecutive gaps within 5 % make a zone with the greatest as its spacing; a gap that differs
+    starts another, and so does other steel. Each gap has the lesser steel of its two ends. A
+    single gap that is closer than its neighbours does not make a closer zone. A zone reaches to
+    the beam's end where its last stirrup is within a spacing of it, else half a spacing further.
+    """
+    if len(places) < 2:
+        return []
+    zones = _without_lone_close_gaps(list(_joined(places)))
+    zones[0] = replace(zones[0], start=_reach(zones[0].start, zones[0].spacing, 0.0, -1.0))
+    zones[-1] = replace(zones[-1], end=_reach(zones[-1].end, zones[-1].spacing, length, 1.0))
+    return zones
+
+
+def _reach(x: float, spacing: float, end: float, sign: float) -> float:
+    return end if (end - x) * sign <= spacing else x + sign * spacing / 2.0
+
+
+def _joined(places: Sequence[Place]) -> Iterator[Zone]:
+    """Join consecutive gaps of one spacing and the same steel."""
+    begin = 0
+    steel = min(places[:2], key=lambda place: place.area)
+    close = wide = places[1].x - places[0].x
+    for index in range(1, len(places) - 1):
+        one, other = places[index], places[index + 1]
+        gap, lesser = other.x - one.x, one if one.area <= other.area else other
+        closest, widest = min(close, gap), max(wide, gap)
+        if widest <= SAME_SPACING * closest and same_steel(steel, lesser):
+            close, wide = closest, widest
+            continue
+        yield _zone(places[begin : index + 1], wide)
+        begin, steel, close, wide = index, lesser, gap, gap
+    yield _zone(places[begin:], wide)
+
+
+def _zone(places: Sequence[Place], spacing: float) -> Zone:
+    return Zone(places[0].x, places[-1].x, spacing, tuple(places))
+
+
+def same_steel(one: Place, other: Place) -> bool:
+    """Whether two places hold the same legs of the same steel."""
+    areas = sorted((one.area, other.area))
+    return (
+        one.legs == other.legs
+        and areas[1] <= SAME_STEEL * areas[0]
+        and one.grade == other.grade
+        and one.closed == other.closed
+    )
+
+
+def _without_lone_close_gaps(zones: list[Zone]) -> list[Zone]:
+    """Give a zone of one gap that is closer than all its neighbours their least spacing."""
+    settled = []
+    for index, zone in enumerate(zones):
+        beside = [
+            z.spacing for z in (*zones[max(index - 1, 0) : index], *zones[index + 1 : index + 2])
+        ]
+        lone = len(zone.places) == 2 and beside and zone.spacing < min(beside)
+        settled.append(replace(zone, spacing=min(beside)) if lone else zone)
+    return settled
