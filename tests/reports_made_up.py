@@ -184,7 +184,7 @@ def _limit_states(beam: Beam, used: tuple[float, float, float]) -> tuple[LimitSt
 
 
 def _safe_load(beam: Beam, case: str, used: float, i: int) -> SafeLoad:
-    factor = math.inf if i % 5 == 0 else max(0.0, 1.0 + (1.0 - used) / 0.45)
+    factor = math.inf if i % 5 == 0 and used < 1.0 else max(0.0, 1.0 + (1.0 - used) / 0.45)
     value = 60_000.0 * factor if math.isfinite(factor) else math.nan
     text = (
         f"{math.floor(value / 100.0) / 10.0} kN at 2.10 m"

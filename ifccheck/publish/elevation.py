@@ -25,7 +25,7 @@ WIDTH, LEFT, RIGHT = 760.0, 56.0, 18.0
 """The strip that elevation and diagrams share, so that a place is the same in all of them."""
 SHALLOWEST, DEEPEST = 54.0, 130.0
 EXAGGERATIONS = (1, 2, 3, 4, 5, 6, 8, 10)
-BAND, LETTER, LETTER_WIDTH = 19.0, 10.0, 5.1
+BAND, LETTER_WIDTH = 24.0, 5.1
 MOST_BANDS = 4
 ARROW = 24.0
 
@@ -90,9 +90,9 @@ def elevation(sheet: Sheet) -> str:
         *(_stirrup_set(stirrups, frame, foot) for stirrups in sheet.stirrups),
         *(_bar_layer(i, bars, frame) for i, bars in enumerate(sheet.bars)),
         _supports(sheet.span, frame),
-        _span_line(sheet.span, length, frame, foot + 48.0),
+        _span_line(sheet.span, length, frame, foot + 58.0),
     ]
-    height = foot + 62.0
+    height = foot + 72.0
     scale = f"heights drawn {frame.exaggeration} times the lengths"
     told = "to scale" if frame.exaggeration == 1 else scale
     parts.append(label(WIDTH - RIGHT, 10.0, told, "note end"))
@@ -191,7 +191,7 @@ def _span_line(span: Span | None, length: float, frame: Frame, y: float) -> str:
     x0, x1 = frame.x(start), frame.x(end)
     line = f"{segment(x0, y - 4, x0, y + 4)}{segment(x0, y, x1, y)}{segment(x1, y - 4, x1, y + 4)}"
     words = f"{'span' if span else 'length'} {show(end - start, 'length')}"
-    origin = label(LEFT, y + 11.0, "start, x = 0", "m")
+    origin = label(LEFT, y + 11.0, "start, x = 0", "note")
     return path(line, "measure") + label((x0 + x1) / 2.0, y - 4.0, words, "m halo") + origin
 
 
@@ -255,10 +255,12 @@ def load_words(load: Load) -> str:
 
 def _line_load(load: Load, frame: Frame, base: float, away: float, peak: float) -> str:
     x0, x1 = frame.x(load.start), frame.x(load.end)
-    near = base + away * 2.0
-    high0, high1 = (near + away * (2.0 + 11.0 * abs(v) / peak) for v in load.values)
+    near = base + away * 1.5
+    high0, high1 = (near + away * (1.5 + 8.0 * abs(v) / peak) for v in load.values)
     shape = closed_path(thinned([(x0, near), (x0, high0), (x1, high1), (x1, near)], 0.0))
-    words = label((x0 + x1) / 2.0, base + away * 8.0 + 3.4, _named(load), "load-name halo")
+    words = label(
+        (x0 + x1) / 2.0, base + away * (17.0 if away > 0.0 else 13.5), _named(load), "load-name"
+    )
     return path(shape, "load") + words
 
 

@@ -28,7 +28,6 @@ from ifccheck.publish.tint import BANDS, band
 from ifccheck.publish.words import (
     CAUTIONS,
     factor_words,
-    joined,
     utilisation_words,
     verdict_phrase,
 )
@@ -54,7 +53,7 @@ def render(report: Report) -> str:
         counts=report.counts,
         tallies=_tallies(report.counts),
         proportion=Markup(_proportion(report.counts)),
-        covered=joined(w for r in report.ratings.values() if _adequate(r) for w in r.checked),
+        covered=_covered(report.ratings.values()),
         worst=[row for row in rows if row.utilisation][:WORST],
         cases=[_case(case, report, numbers) for case in report.cases],
         plans=_plans(report, numbers),
@@ -91,8 +90,10 @@ def _fingerprint(text: str) -> str:
     return f"'sha256-{digest}'"
 
 
-def _adequate(rating: Rating) -> bool:
-    return rating.verdict is Verdict.ADEQUATE
+def _covered(ratings: Iterable[Rating]) -> list[tuple[str, int]]:
+    """What the adequate beams are adequate in, each wording with its number of beams."""
+    phrases = Counter(verdict_phrase(r) for r in ratings if r.verdict is Verdict.ADEQUATE)
+    return phrases.most_common()
 
 
 @dataclass(frozen=True, slots=True)
@@ -261,7 +262,8 @@ def _proportion(counts: Counts) -> str:
                 ' height="12"/>'
             )
         left += width
-    return f'<svg class="proportion" viewBox="0 0 600 14" aria-hidden="true">{"".join(parts)}</svg>'
+    shape = 'viewBox="0 0 600 14" preserveAspectRatio="none"'
+    return f'<svg class="proportion" {shape} aria-hidden="true">{"".join(parts)}</svg>'
 
 
 @dataclass(frozen=True, slots=True)

@@ -290,7 +290,9 @@ def _mark(shape: _Shape, sheet: _Sheet, rating: Rating) -> str:
         return ""
     (x0, y0), (x1, y1) = sorted(ends, key=lambda p: (round(p[0], 1), -p[1]))
     room = math.hypot(x1 - x0, y1 - y0) / LETTER_WIDTH
-    mark, figure = plain(shape.beam.mark), utilisation_words(rating.utilisation)
+    mark = plain(shape.beam.mark)
+    known = not math.isnan(rating.utilisation)
+    figure = utilisation_words(rating.utilisation) if known else ""
     text = f"{mark}  {figure}" if len(mark) + len(figure) + 2 <= room else mark
     if len(text) > room:
         return ""

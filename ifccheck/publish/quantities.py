@@ -35,7 +35,7 @@ def quantity_words(value: float, kind: ShownKind) -> str:
     >>> quantity_words(40.0, "dimension"), quantity_words(1.5e8, "moment")
     ('40 mm', '150 kN·m')
     """
-    words = show(value, kind).replace("*", "·")
+    words = show(value, kind).replace("*", "·").replace("m2", "m²").replace("m3", "m³")
     return _NO_DECIMALS.sub("", words) if kind in _WHOLE and value == round(value) else words
 
 

@@ -170,7 +170,8 @@ class _Check:
 
 
 def _check(check: SheetCheck) -> _Check:
-    _, _, outcome = check.outcome.partition(": ")
+    known = not math.isnan(check.utilisation)
+    outcome = check.outcome.partition(": ")[2] if known else check.outcome
     return _Check(
         title=check.title,
         place=check.place,
@@ -178,7 +179,7 @@ def _check(check: SheetCheck) -> _Check:
         lines=[_line(line) for line in check.lines],
         over=falls_short(check.utilisation),
         used=utilisation_words(check.utilisation),
-        outcome=outcome or check.outcome,
+        outcome=outcome.replace("*", "·"),
     )
 
 

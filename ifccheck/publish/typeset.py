@@ -57,12 +57,13 @@ def _token_html(found: re.Match[str]) -> str:
 
 
 def _name_html(name: str) -> str:
-    """One symbol: ``phi_c``, ``Vc``, ``f'c``, ``eps_x``, ``b``."""
-    base, _, index = name.rstrip("_").partition("_")
-    if base not in GREEK and len(base) > 1 and not index:
+    """One symbol: ``phi_c``, ``Vc``, ``Av_min``, ``f'c``, ``eps_x``, ``b``."""
+    base, *indices = [part for part in name.split("_") if part]
+    if base not in GREEK and len(base) > 1:
         base, index = _split(base)
-    lowered = "".join(f"<sub>{_letter(part)}</sub>" for part in index.split("_") if part)
-    return f"<i>{_letter(base)}</i>{lowered}"
+        indices = [index, *indices] if index else indices
+    lowered = ",".join(map(_letter, indices))
+    return f"<i>{_letter(base)}</i>{f'<sub>{lowered}</sub>' if lowered else ''}"
 
 
 def _split(name: str) -> tuple[str, str]:

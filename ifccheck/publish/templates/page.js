@@ -60,6 +60,7 @@
   };
   const showSheet = async (row) => {
     const sheet = made(await sheetOf(row));
+    if (asked() !== row) return;
     turnTo("sheet");
     opened = row;
     views.sheet.querySelector(".pages").replaceChildren(sheet);
@@ -108,7 +109,7 @@
     if (location.hash === "#all-sheets") return showAll();
     return showSummary();
   };
-  const open = (row) => { location.hash = addressOf(row); };
+  const open = (row) => { if (row) location.hash = addressOf(row); };
   const close = () => { location.hash = "#beams-listed"; };
   window.addEventListener("hashchange", follow);
   document.addEventListener("click", (event) => {
@@ -122,8 +123,8 @@
   });
   byId("back").addEventListener("click", close);
   byId("leave").addEventListener("click", close);
-  byId("previous").addEventListener("click", () => open(neighbours(opened).before));
-  byId("next").addEventListener("click", () => open(neighbours(opened).after));
+  byId("previous").addEventListener("click", () => open(neighbours(asked()).before));
+  byId("next").addEventListener("click", () => open(neighbours(asked()).after));
   byId("print-one").addEventListener("click", () => window.print());
   byId("print-now").addEventListener("click", () => window.print());
   byId("print-all").addEventListener("click", () => { location.hash = "#all-sheets"; });
