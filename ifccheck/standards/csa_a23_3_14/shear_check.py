@@ -257,8 +257,6 @@ def _details(
 ) -> ShearDetails:
     concrete, steel, greatest = terms
     simplified = prepared.surroundings.simplified
-    effective, plain = stirrups.effective, ~stirrups.effective
-    by_depth = cracks.aggregate >= formulas.SIMPLIFIED_AGGREGATE
     beyond_strain = strain.present & ~simplified & (strain.strain > formulas.GREATEST_STRAIN)
     beyond_simplified = simplified & _beyond_simplified(prepared)
     beyond_materials = _beyond_materials(prepared)
@@ -291,20 +289,30 @@ def _details(
         greatest=greatest,
         steel_present=strain.present.astype(np.float64),
         resistance=np.where(outside, np.nan, resistance),
-        has_stirrups=stirrups.present,
-        effective=effective,
-        plain=plain,
-        general=~simplified,
-        general_effective=effective & ~simplified,
-        general_plain=plain & ~simplified,
-        simplified=simplified,
-        simplified_effective=effective & simplified,
-        simplified_plain_depth=plain & simplified & by_depth,
-        simplified_plain_spacing=plain & simplified & ~by_depth,
+        **_methods(prepared, stirrups, cracks),
         beyond_strain=beyond_strain,
         beyond_simplified=beyond_simplified,
         beyond_materials=beyond_materials,
     )
+
+
+def _methods(prepared: Prepared, stirrups: _Stirrups, cracks: _Cracks) -> dict[str, Bools]:
+    """Which method and which of its forms holds, by the names of the details."""
+    simplified = prepared.surroundings.simplified
+    effective, plain = stirrups.effective, ~stirrups.effective
+    by_depth = cracks.aggregate >= formulas.SIMPLIFIED_AGGREGATE
+    return {
+        "has_stirrups": stirrups.present,
+        "effective": effective,
+        "plain": plain,
+        "general": ~simplified,
+        "general_effective": effective & ~simplified,
+        "general_plain": plain & ~simplified,
+        "simplified": simplified,
+        "simplified_effective": effective & simplified,
+        "simplified_plain_depth": plain & simplified & by_depth,
+        "simplified_plain_spacing": plain & simplified & ~by_depth,
+    }
 
 
 def _beyond_simplified(prepared: Prepared) -> Bools:
