@@ -89,16 +89,27 @@ def _require_unused(file: Any, ours: dict[int, Any]) -> None:
 
 def _with_unused_parts(file: Any, ours: dict[int, Any]) -> set[int]:
     """Add the values, units and owner histories that only these instances use."""
-    removed = set(ours)
-    waiting = list(ours.values())
-    while waiting:
-        for part in file.traverse(waiting.pop(), max_levels=1)[1:]:
-            if part.id() in removed or part.id() == 0 or part.is_a() not in _ONLY_OURS:
-                continue
-            if all(user.id() in removed for user in file.get_inverse(part)):
-                removed.add(part.id())
-                waiting.append(part)
-    return removed
+    removed = dict(ours)
+    parts = _parts(file, removed.values())
+    while unused := {
+        number: part
+        for number, part in parts.items()
+        if all(user.id() in removed for user in file.get_inverse(part))
+    }:
+        removed |= unused
+        parts |= _parts(file, unused.values())
+        parts = {number: part for number, part in parts.items() if number not in removed}
+    return set(removed)
+
+
+def _parts(file: Any, entities: Iterable[Any]) -> dict[int, Any]:
+    """Find what entities refer to and may have brought with them."""
+    return {
+        part.id(): part
+        for entity in entities
+        for part in file.traverse(entity, max_levels=1)[1:]
+        if part.id() and part.is_a() in _ONLY_OURS
+    }
 
 
 def without_instances(data: bytes, scan: Scan, numbers: set[int]) -> bytes:

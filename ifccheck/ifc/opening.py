@@ -18,6 +18,7 @@ from ifccheck.ifc.archive import unpack
 from ifccheck.ifc.earlier import InUseError, may_hold_results, result_instances, without_instances
 from ifccheck.ifc.lexer import BYTE_ORDER_MARK, EXPORT_AGAIN, Scan, StepError, scan
 from ifccheck.ifc.marks import without_intact_block
+from ifccheck.ifc.step_text import escaped
 
 SUPPORTED_SCHEMAS = ("IFC2X3", "IFC4", "IFC4X3_ADD2")
 _OUTSIDE_ASCII = re.compile(rb"[\x80-\xff]+")
@@ -164,11 +165,7 @@ def _readable(data: bytes) -> bytes:
         encoding = "utf-8"
     except UnicodeDecodeError:
         encoding = "latin-1"
-    return _OUTSIDE_ASCII.sub(lambda match: _escaped(match[0].decode(encoding)), data)
-
-
-def _escaped(text: str) -> bytes:
-    return b"\\X4\\%b\\X0\\" % text.encode("utf-32-be").hex().upper().encode()
+    return _OUTSIDE_ASCII.sub(lambda match: escaped(match[0].decode(encoding)).encode(), data)
 
 
 def _open(path: Path, place: Path) -> Any:

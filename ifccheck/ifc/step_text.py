@@ -6,6 +6,8 @@ import re
 from functools import lru_cache
 
 _SPECIAL = re.compile(r"['\\]|[^ -~]+")
+_NEVER_WRITTEN = re.compile("[\0\ud800-\udfff]")
+"""Readers end a text at a zero, and half a character no file may hold."""
 
 
 @lru_cache(maxsize=4096)
@@ -22,16 +24,19 @@ def step_string(text: str) -> str:
 
 def _escape(match: re.Match[str]) -> str:
     found = match[0]
-    if found in "'\\":
-        return found * 2
-    return "".join(_hexadecimal(character) for character in found).replace("\\X0\\\\X2\\", "")
+    return found * 2 if found in "'\\" else escaped(found)
 
 
-def _hexadecimal(character: str) -> str:
-    code = ord(character)
-    if 0xD800 <= code <= 0xDFFF:
-        code = 0xFFFD  # half a character, which no file may hold
-    return f"\\X2\\{code:04X}\\X0\\" if code <= 0xFFFF else f"\\X4\\{code:08X}\\X0\\"
+def escaped(text: str) -> str:
+    r"""Return a text in hexadecimal, four digits a character or eight where one needs them.
+
+    >>> print(escaped("≥"))
+    \X2\2265\X0\
+    """
+    text = _NEVER_WRITTEN.sub("\ufffd", text)
+    if max(text) <= "\uffff":
+        return f"\\X2\\{text.encode('utf-16-be').hex().upper()}\\X0\\"
+    return f"\\X4\\{text.encode('utf-32-be').hex().upper()}\\X0\\"
 
 
 def step_real(value: float) -> str:
