@@ -15,6 +15,9 @@ from ifccheck.mechanics.width_profile import compression_block, width_at
 TOLERANCE = 1e-12
 """Relative accuracy of the neutral axis depth and of equilibrium."""
 
+LAST_STEP = 1e-9
+"""A Newton step of this relative size leaves an error far below it."""
+
 NEGLIGIBLE_FORCE = 1e-6
 """Steel that can take no more than this [N] is none."""
 
@@ -206,8 +209,9 @@ def _search(sections: _Sections, c: Floats, capacity: Floats) -> Floats:
             unsafe[:] = True
         better = np.where(unsafe, (low + high) / 2, better)
         done = (np.abs(balance) <= TOLERANCE * capacity) | (high - low <= TOLERANCE * high)
-        done |= ~unsafe & (np.abs(better - c) <= TOLERANCE * c)
-        found[place[done]] = c[done]
+        last_step = ~unsafe & (np.abs(better - c) <= LAST_STEP * c)
+        done |= last_step
+        found[place[done]] = np.where(last_step, better, c)[done]
         finished |= done
         if finished.all():
             break

@@ -177,7 +177,7 @@ class SectionState:
         """A bar that reaches the section has its centre outside the outline's height"""
         above = self.bars.height > top_of(self.strips)[:, None] + SLIVER
         below = self.bars.height < bottom_of(self.strips)[:, None] - SLIVER
-        outside: Bools = ((above | below) & self.present).any(axis=1)
+        outside: Bools = np.any((above | below) & self.present, axis=1)
         return outside
 
 
@@ -218,7 +218,7 @@ def _face(
     bw = least_width(strips, np.zeros_like(h), np.where(np.isnan(d), h, d))
     s = _strength(section, strips, layer_depth, side)
     tension_area = developed.sum(axis=1)
-    beyond_ductility: Bools = s.neutral_axis_depth > ductility_limit(tension_yield) * d
+    beyond_ductility: Bools = np.greater(s.neutral_axis_depth, ductility_limit(tension_yield) * d)
     outside: Bools = np.logical_or.reduce(
         [
             beyond_ductility,

@@ -29,6 +29,9 @@ from ifccheck.standards.csa_a23_3_14.faces import (
     take_rows,
 )
 
+AT_ONCE = 16384
+"""Stations worked on together, so that their arrays stay in the processor's cache."""
+
 
 @dataclass(frozen=True, slots=True)
 class Prepared:
@@ -96,10 +99,7 @@ def prepare(members: Members, stations: Stations, options: Options) -> Prepared:
     """
     strength = members.concrete_strength[stations.beam]
     bars = _layers(members)
-    rows, sagging, hogging, steel_yield = _faces(members, bars, stations)
-    back = np.empty_like(rows)
-    back[rows] = np.arange(len(rows))
-    sagging, hogging, steel_yield = sagging.take(back), hogging.take(back), steel_yield[back]
+    sagging, hogging, steel_yield = _faces(members, bars, stations)
     strips = members.strips
     return Prepared(
         beam=stations.beam,
@@ -190,14 +190,22 @@ def _layers(members: Members) -> Layers:
 
 def _faces(
     members: Members, bars: Layers, stations: Stations
-) -> tuple[Ints, FaceState, FaceState, Floats]:
-    """Both faces and the greatest fy at all stations, in the order of the rows returned."""
-    parts = [
-        (rows, *_group(members, bars, stations, rows, layers, strips))
-        for rows, layers, strips in _groups(members, stations)
-    ]
-    rows, sagging, hogging, steel_yield = zip(*parts, strict=True)
-    return np.concatenate(rows), _join(sagging), _join(hogging), np.concatenate(steel_yield)
+) -> tuple[FaceState, FaceState, Floats]:
+    """Both faces and the greatest fy at all stations."""
+    sagging, hogging, steel_yield = [], [], []
+    index, known = np.empty_like(stations.beam), 0
+    for rows, layers, strips in _groups(members, stations):
+        section, state = _distinct(members, bars, stations, rows, layers, strips)
+        index[rows] = known + state
+        known += len(section.strength)
+        sagging.append(sagging_face(section))
+        hogging.append(hogging_face(section))
+        steel_yield.append(section.steel_yield)
+    return (
+        _join(sagging).take(index),
+        _join(hogging).take(index),
+        np.concatenate(steel_yield)[index],
+    )
 
 
 def _join(states: Sequence[FaceState]) -> FaceState:
@@ -214,7 +222,9 @@ def _groups(members: Members, stations: Stations) -> Iterator[tuple[Ints, int, i
     most = int(strips.max(initial=1)) + 1
     kind = layers * most + strips
     for code in np.flatnonzero(np.bincount(kind)).tolist():
-        yield np.flatnonzero(kind == code), code // most, code % most
+        rows = np.flatnonzero(kind == code)
+        for start in range(0, len(rows), AT_ONCE):
+            yield rows[start : start + AT_ONCE], code // most, code % most
 
 
 def _room(used: Bools) -> Ints:
@@ -225,10 +235,10 @@ def _room(used: Bools) -> Ints:
     return room
 
 
-def _group(
+def _distinct(
     members: Members, bars: Layers, stations: Stations, rows: Ints, layers: int, strips: int
-) -> tuple[FaceState, FaceState, Floats]:
-    """Both faces and the greatest fy at stations of about the same make."""
+) -> tuple[SectionState, Ints]:
+    """Sections that differ among some stations, and which of them each station has."""
     beam, section = stations.beam[rows], stations.section[rows]
     place = (stations.x[rows], stations.side[rows])
     pulled = _developed(bars, beam, layers, *place, bars.start_length, bars.end_length)
@@ -237,7 +247,7 @@ def _group(
         pushed = _developed(bars, beam, layers, *place, bars.start_push, bars.end_push)
     new = _differs(beam, section, pulled, pushed)
     first, state = np.flatnonzero(new), np.cumsum(new) - 1
-    distinct = SectionState(
+    section_state = SectionState(
         strength=members.concrete_strength[beam[first]],
         density_factor=members.density_factor[beam[first]],
         span=members.span[beam[first]],
@@ -249,8 +259,7 @@ def _group(
         pulled=np.asfortranarray(pulled[first]),
         pushed=np.asfortranarray(pushed[first]),
     )
-    sagging, hogging = sagging_face(distinct), hogging_face(distinct)
-    return sagging.take(state), hogging.take(state), distinct.steel_yield[state]
+    return section_state, state
 
 
 def _developed(
