@@ -80,7 +80,7 @@ def subject(
         beam=beam,
         line=Line((key,), (Span(bearing / 2.0, length - bearing / 2.0, *supports),)),
         faces=(bearing, length - bearing), direct=(True, True), bars=bars, stirrups=stirrups,
-        stirrups_known=True, reinforcement_source="bars", loads=tuple(loads),
+        stirrups_known=True, silent=(), reinforcement_source="bars", loads=tuple(loads),
         concrete_strength=Given(strength, "test"), unit_weight=Given(24e-6, "test"),
         density_factor=Given(1.0, "test"), aggregate_size=Given(20.0, "test"),
         bar_yield=tuple(STEEL for _ in bars), stirrup_yield=(STEEL,), reasons=(), remarks=(),

@@ -195,3 +195,13 @@ def test_more_load_cases_change_nothing_where_they_are_empty() -> None:
     _, (without,) = rated(beam)
     _, (with_snow,) = rated(beam, cases=cases)
     assert with_snow.utilisation == pytest.approx(without.utilisation, rel=1e-12)
+
+
+def test_a_tensioned_face_of_which_no_source_speaks_is_not_rated() -> None:
+    loads = (line("floor", 3.0),)
+    unknown = replace(subject(bottom=0, loads=loads), silent=("bottom",))
+    unneeded = replace(subject(top=0, loads=loads), silent=("top",))
+    _, (not_rated, sound) = rated(_renamed(unknown, "a"), _renamed(unneeded, "b"))
+    assert not_rated.verdict is Verdict.NOT_RATED
+    assert "bottom are not stated" in not_rated.reasons[0].text
+    assert sound.verdict is Verdict.ADEQUATE

@@ -10,6 +10,7 @@ import numpy as np
 from ifccheck.beam import (
     Bars,
     Case,
+    Face,
     Given,
     Measure,
     Reason,
@@ -56,6 +57,7 @@ def covered_by(states: Sequence[LimitState]) -> tuple[str, ...]:
 def _rating(batch: Batch, row: int, standard: Standard, cases: Sequence[Case]) -> Rating:
     subject = batch.subjects[row]
     states = tuple(verdict.limit_state_rating(s, row, batch.places) for s in batch.states)
+    states = verdict.with_unknown_steel(states, _silent_faces(batch, row))
     reasons = (*subject.reasons, *verdict.incomplete_reasons(states))
     word = verdict.verdict_of(states, reasons)
     governing = verdict.governing_of(states)
@@ -73,6 +75,16 @@ def _rating(batch: Batch, row: int, standard: Standard, cases: Sequence[Case]) -
         checked=covered_by([s.state for s in batch.states]),
         not_checked=standard.not_checked,
     )
+
+
+def _silent_faces(batch: Batch, row: int) -> tuple[Face, ...]:
+    """Faces in tension of whose bars no source speaks."""
+    stations = slice(batch.first[row], batch.first[row + 1])
+    tensioned = {
+        "bottom": bool(np.any(batch.envelope.moment_high[stations] > 0.0)),
+        "top": bool(np.any(batch.envelope.moment_low[stations] < 0.0)),
+    }
+    return tuple(face for face in batch.subjects[row].silent if tensioned[face])
 
 
 def _utilisation(word: Verdict, governing: LimitStateRating | None) -> float:

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from dataclasses import dataclass
 
-from ifccheck.beam import Bars, Beam, Given, Line, Load, Reason, Remark, Span, Stirrups
+from ifccheck.beam import Bars, Beam, Face, Given, Line, Load, Reason, Remark, Span, Stirrups
 
 
 @dataclass(frozen=True, slots=True)
@@ -21,6 +21,8 @@ class Subject:
     stirrups: tuple[Stirrups, ...]
     stirrups_known: bool
     """False where no source says whether there are stirrups"""
+    silent: tuple[Face, ...]
+    """Faces of whose bars no source speaks on some stretch: counted as none"""
     reinforcement_source: str
     faces: tuple[float, float]
     """x of the faces of the two supports [mm]"""

@@ -4,11 +4,11 @@ from __future__ import annotations
 
 import math
 from collections.abc import Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 
-from ifccheck.beam import Combination, Load, Reason, Verdict
+from ifccheck.beam import Combination, Face, Load, Reason, Verdict
 from ifccheck.mechanics.arrays import Floats
 from ifccheck.rating.factors import Factors
 from ifccheck.rating.results import LimitStateRating, SafeLoad
@@ -83,6 +83,21 @@ def _why_not(check: Check, element: int) -> str:
         if mask[element]:
             return f"outside {outside.clause}: {outside.text}"
     return "an input is missing"
+
+
+def with_unknown_steel(
+    states: Sequence[LimitStateRating], silent: Sequence[Face]
+) -> tuple[LimitStateRating, ...]:
+    """What is demanded of no steel at all is not known where a tensioned face's bars are not."""
+    if not silent:
+        return tuple(states)
+    why = f"the bars of the {' and of the '.join(silent)} are not stated"
+    return tuple(
+        replace(state, utilisation=math.nan, why_not=why)
+        if math.isinf(state.utilisation)
+        else state
+        for state in states
+    )
 
 
 def governing_of(states: Sequence[LimitStateRating]) -> LimitStateRating | None:

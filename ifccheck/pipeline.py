@@ -1,0 +1,238 @@
+"""The whole run on one page: read, brief, demand, resistance, rating, publish."""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Collection, Mapping, Sequence
+from dataclasses import dataclass
+from pathlib import Path
+
+from ifccheck import __version__, results
+from ifccheck.analysis.combinations import expand_exclusions
+from ifccheck.beam import Case, Combination, Model, Verdict
+from ifccheck.brief.cases import cases_of, combination_remarks, combinations_of
+from ifccheck.brief.load import load_brief
+from ifccheck.brief.merging import Matches
+from ifccheck.brief.model import Brief, ScheduleRow
+from ifccheck.brief.schedule import read_schedule
+from ifccheck.brief.selecting import Found, check_reached, join, selections
+from ifccheck.brief.zones import schedule_remarks, with_schedule
+from ifccheck.errors import BriefError, ModelError, UsageError
+from ifccheck.ifc.opening import OpenedModel, open_model
+from ifccheck.ifc.reader import read_model
+from ifccheck.ifc.selection import select
+from ifccheck.outputs import write_all
+from ifccheck.publish.report import Report
+from ifccheck.rating.batch import Batch, batches
+from ifccheck.sheet import Sheet
+from ifccheck.standards import Options, Standard
+from ifccheck.standards.discovery import all_standards, find_standard
+from ifccheck.subjects import Gathered, gather
+
+Say = Callable[[str], None]
+
+
+@dataclass(frozen=True)
+class Plan:
+    """The brief joined with its standard: what every model of the run is rated by."""
+
+    brief: Brief
+    standard: Standard
+    options: Options
+    cases: tuple[Case, ...]
+    combinations: tuple[Combination, ...]
+    schedule: tuple[ScheduleRow, ...]
+
+
+@dataclass(frozen=True)
+class Read:
+    """One model as it was opened and read."""
+
+    opened: OpenedModel
+    model: Model
+
+
+@dataclass(frozen=True)
+class Rated:
+    """One model with what each stage gave, so that a changed brief can be rated anew."""
+
+    read: Read
+    gathered: Gathered
+    batches: tuple[Batch, ...]
+    report: Report
+
+
+@dataclass(frozen=True)
+class Run:
+    """All models of a run."""
+
+    plan: Plan
+    rated: tuple[Rated, ...]
+
+    @property
+    def reports(self) -> tuple[Report, ...]:
+        """What there is to publish, model by model."""
+        return tuple(rated.report for rated in self.rated)
+
+    @property
+    def exit_status(self) -> int:
+        """0 where every beam in scope is adequate and there is at least one, else 3."""
+        verdicts = [r.verdict for report in self.reports for r in report.ratings.values()]
+        return 0 if verdicts and set(verdicts) == {Verdict.ADEQUATE} else 3
+
+
+@dataclass(frozen=True)
+class Survey:
+    """What a model holds, and what a rating of each beam would lack."""
+
+    model: Model
+    missing: Mapping[str, tuple[str, ...]]
+
+
+def rate(models: Sequence[Path], brief_path: Path, say: Say = lambda _: None) -> Run:
+    """Rate every beam of the models by the brief."""
+    plan = make_plan(brief_path)
+    reads = read_models(models, plan.brief, say)
+    found = tuple(find_beams(read, plan) for read in reads)
+    check_reached(plan.brief, found)
+    rated = tuple(
+        rate_model(read, join(plan.brief, plan.schedule, of_model), plan, found, say)
+        for read, of_model in zip(reads, found, strict=True)
+    )
+    return Run(plan, rated)
+
+
+def make_plan(brief_path: Path) -> Plan:
+    """Read the brief with the standard, cases and combinations that it names."""
+    brief = load_brief(brief_path)
+    standard = find_standard(brief.basis.standard)
+    cases = cases_of(brief)
+    stated = combinations_of(brief)
+    strength = [c for c in stated if c.kind == "strength"] or [
+        c for c in standard.combinations(cases) if c.kind == "strength"
+    ]
+    return Plan(
+        brief=brief,
+        standard=standard,
+        options=Options(_shear_method(brief, standard)),
+        cases=cases,
+        combinations=expand_exclusions(strength, cases),
+        schedule=read_schedule(brief.schedule) if brief.schedule else (),
+    )
+
+
+def _shear_method(brief: Brief, standard: Standard) -> str:
+    method = brief.basis.shear_method or standard.shear_methods[0]
+    if method not in standard.shear_methods:
+        raise BriefError(
+            f"{brief.file_name}: basis.shear_method '{method}' is not offered by {standard.id}:"
+            f" use {' or '.join(standard.shear_methods)}"
+        )
+    return method
+
+
+def read_models(models: Sequence[Path], brief: Brief | None, say: Say) -> tuple[Read, ...]:
+    """Open and read the models; their names must differ, since results are named after them."""
+    names = [output_name(path) for path in models]
+    for name in names:
+        if names.count(name) > 1:
+            raise UsageError(f"{name}: two models of this name would write the same results")
+    return tuple(_read(path, brief, say) for path in models)
+
+
+def _read(path: Path, brief: Brief | None, say: Say) -> Read:
+    say(f"opening {path.name}")
+    opened = open_model(path)
+    say(f"reading {path.name}")
+    model = read_model(opened, _mapping(brief))
+    if not model.beams and not model.out_of_scope:
+        raise ModelError(f"{path}: holds no beam (IfcBeam); export the model with its beams")
+    return Read(opened, model)
+
+
+def _mapping(brief: Brief | None) -> dict[str, str]:
+    return {str(name): place for name, place in brief.property_mapping.items()} if brief else {}
+
+
+def find_beams(read: Read, plan: Plan) -> Found:
+    """Keys of the beams that each mark and query of the brief reaches in a model."""
+    beams = read.model.beams
+    return {
+        place: select(read.opened, beams, part.beams, part.where)
+        for place, part in selections(plan.brief, plan.schedule).items()
+    }
+
+
+def rate_model(read: Read, matches: Matches, plan: Plan, found: Sequence[Found], say: Say) -> Rated:
+    """Rate one model: gather what each beam rests on, then all of them on arrays."""
+    say(f"gathering loads and supports of {read.model.file_name}")
+    beams = {beam.key: beam for beam in read.model.beams}
+    model = results.with_beams(
+        read.model, tuple(with_schedule(plan.schedule, matches, beams).values())
+    )
+    gathered = gather(model, plan.brief, matches, plan.standard)
+    say(f"rating {read.model.file_name}")
+    rated = tuple(
+        batches(gathered.subjects, plan.standard, plan.options, plan.cases, plan.combinations)
+    )
+    remarks = (
+        *model.remarks,
+        *schedule_remarks(plan.schedule, found),
+        *combination_remarks(plan.brief),
+    )
+    report = results.report_of(
+        model, gathered, rated, remarks, version=__version__, brief=plan.brief,
+        standard=plan.standard, options=plan.options, cases=plan.cases,
+        combinations=plan.combinations,
+    )  # fmt: skip
+    return Rated(read, gathered, rated, report)
+
+
+def publish(
+    run: Run, out: Path, only: Collection[str], say: Say = lambda _: None
+) -> dict[str, tuple[Path, ...]]:
+    """Write the results of a run, all of them or none; return the paths by model."""
+    files: dict[Path, bytes] = {}
+    written: dict[str, tuple[Path, ...]] = {}
+    for rated in run.rated:
+        say(f"publishing {rated.report.model.file_name}")
+        made = results.files_of(rated.read.opened, rated.report, out, only)
+        written[rated.report.model.file_name] = tuple(made)
+        files.update(made)
+    sources = {rated.read.opened.path.resolve() for rated in run.rated}
+    sources |= {run.plan.brief.path.resolve()}
+    if overwritten := sources & {path.resolve() for path in files}:
+        raise UsageError(
+            f"{sorted(overwritten)[0]}: a result would overwrite an input; name another folder"
+            " with --out"
+        )
+    write_all(files)
+    return written
+
+
+def output_name(path: Path) -> str:
+    """Stem of the results of a model; a trailing ``-rated`` is not repeated."""
+    return path.stem.removesuffix("-rated")
+
+
+def survey(model: Path, brief_path: Path | None, say: Say = lambda _: None) -> Survey:
+    """Tell what a model holds and what a rating would lack."""
+    brief = load_brief(brief_path) if brief_path else None
+    read = read_models([model], brief, say)[0]
+    return Survey(read.model, results.missing_of(read.model))
+
+
+def sheets(
+    model: Path, mark: str, brief_path: Path, say: Say = lambda _: None
+) -> tuple[Sheet, ...]:
+    """Return the calculation of each beam that goes by a GlobalId, Tag or Name."""
+    run = rate([model], brief_path, say)
+    read, report = run.rated[0].read, run.rated[0].report
+    keys = select(read.opened, read.model.beams, [mark], None)
+    if not keys:
+        raise UsageError(f"{model}: no beam in scope is '{mark}'; give a GlobalId, Tag or Name")
+    return tuple(report.sheet(key) for key in keys)
+
+
+def standards() -> tuple[tuple[str, Standard | str], ...]:
+    """Return every installed standard, or what is wrong with it."""
+    return all_standards()

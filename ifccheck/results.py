@@ -1,0 +1,179 @@
+"""Turns what a run found into reports and files."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Callable, Collection, Iterable, Mapping, Sequence
+from dataclasses import replace
+from pathlib import Path
+from typing import TYPE_CHECKING
+
+from ifccheck.beam import Beam, Case, Combination, Model, Remark
+from ifccheck.brief.model import Brief
+from ifccheck.publish.report import Assumption, CaseSummary, Report
+from ifccheck.rating.answers import ratings_of, unrated
+from ifccheck.rating.batch import Batch
+from ifccheck.rating.results import Rating
+from ifccheck.sheet import Sheet, bare_sheet, sheet_maker
+from ifccheck.standards import Options, Standard
+from ifccheck.subjects import Gathered
+
+if TYPE_CHECKING:
+    from ifccheck.ifc.opening import OpenedModel
+
+
+def with_beams(model: Model, beams: tuple[Beam, ...]) -> Model:
+    """The model with its beams replaced by the same ones, told more of."""
+    return replace(model, beams=beams)
+
+
+def report_of(
+    model: Model,
+    gathered: Gathered,
+    batches: Sequence[Batch],
+    remarks: Sequence[Remark],
+    *,
+    version: str,
+    brief: Brief,
+    standard: Standard,
+    options: Options,
+    cases: Sequence[Case],
+    combinations: Sequence[Combination],
+) -> Report:
+    """Gather all that the publishers need of one model."""
+    answers = {
+        rating.beam: rating for batch in batches for rating in ratings_of(batch, standard, cases)
+    }
+    answers |= {each.beam.key: unrated(each, standard) for each in gathered.unrated}
+    ratings = {beam.key: answers[beam.key] for beam in model.beams}
+    return Report(
+        version=version,
+        standard_id=standard.id,
+        standard_title=standard.title,
+        standard_edition=standard.edition,
+        actions=standard.actions,
+        shear_method=options.shear_method,
+        brief_name=brief.file_name,
+        brief_sha256=brief.sha256,
+        model=model,
+        ratings=ratings,
+        sheet=_sheets(model, batches, ratings),
+        lines=tuple(subject.line for subject in gathered.subjects),
+        cases=tuple(_case(case, gathered, ratings) for case in cases if case.rated),
+        combinations=tuple(combinations),
+        remarks=tuple(remarks),
+        assumptions=_assumptions(ratings.values()),
+    )
+
+
+def _sheets(
+    model: Model, batches: Sequence[Batch], ratings: Mapping[str, Rating]
+) -> Callable[[str], Sheet]:
+    """A function that makes the sheet of a beam; a batch's details are worked out when first
+    asked for."""
+    beams = {beam.key: beam for beam in model.beams}
+    place = {
+        subject.beam.key: (number, row)
+        for number, batch in enumerate(batches)
+        for row, subject in enumerate(batch.subjects)
+    }
+    makers: dict[int, Callable[[int], Sheet]] = {}
+
+    def sheet(key: str) -> Sheet:
+        if key not in place:
+            return bare_sheet(beams[key], ratings[key])
+        number, row = place[key]
+        if number not in makers:
+            batch = batches[number]
+            own = [ratings[subject.beam.key] for subject in batch.subjects]
+            makers[number] = sheet_maker(batch, own)
+        return makers[number](row)
+
+    return sheet
+
+
+def _case(case: Case, gathered: Gathered, ratings: Mapping[str, Rating]) -> CaseSummary:
+    """The factor of a rated case over the whole model."""
+    reached = list(dict.fromkeys(load.beam for load in gathered.loads if load.case == case.name))
+    factors = {
+        key: safe.factor
+        for key in reached
+        for safe in ratings[key].safe_loads
+        if safe.case == case.name
+    }
+    open_ = tuple(key for key in reached if math.isnan(factors.get(key, math.nan)))
+    least = min(factors, key=lambda key: factors[key], default=None) if not open_ else None
+    limited = least is not None and math.isfinite(factors[least])
+    return CaseSummary(
+        case=case.name,
+        nature=case.nature,
+        factor=math.nan if least is None else factors[least],
+        governing_beam=least if limited else None,
+        text=_case_text(case.name, least if limited else None, open_, ratings),
+        beams_reached=len(reached),
+        unrated_in_path=open_,
+    )
+
+
+def _case_text(
+    case: str, governing: str | None, unrated_keys: Sequence[str], ratings: Mapping[str, Rating]
+) -> str:
+    if unrated_keys:
+        beams = "1 beam" if len(unrated_keys) == 1 else f"{len(unrated_keys)} beams"
+        return f"not rated: {beams} that it reaches cannot be rated"
+    if governing is None:
+        return "no beam limits it"
+    safe = next(each for each in ratings[governing].safe_loads if each.case == case)
+    return safe.governing
+
+
+def _assumptions(ratings: Iterable[Rating]) -> tuple[Assumption, ...]:
+    """Every assumption once, with the beams that it was made for."""
+    beams: dict[str, list[str]] = {}
+    for rating in ratings:
+        for remark in rating.remarks:
+            if remark.kind == "assumption":
+                beams.setdefault(remark.text, []).append(rating.beam)
+    return tuple(Assumption(text, tuple(dict.fromkeys(keys))) for text, keys in beams.items())
+
+
+def files_of(
+    opened: OpenedModel, report: Report, out: Path, only: Collection[str]
+) -> dict[Path, bytes]:
+    """Name and make the result files of one model."""
+    stem = opened.path.stem.removesuffix("-rated")
+    files: dict[Path, bytes] = {}
+    if "model" in only:
+        from ifccheck.ifc.writeback import packed, rated_bytes
+        from ifccheck.publish.property_sets import result_sets
+
+        data = packed(opened, rated_bytes(opened, result_sets(report)))
+        files[out / f"{stem}-rated{opened.path.suffix}"] = data
+    if "html" in only:
+        from ifccheck.publish.html import render
+
+        files[out / f"{stem}-rating.html"] = render(report).encode("utf-8")
+    if "csv" in only:
+        from ifccheck.publish.csv import ratings_csv
+
+        files[out / f"{stem}-rating.csv"] = ratings_csv(report).encode("utf-8")
+    if "json" in only:
+        from ifccheck.publish.json import ratings_json
+
+        files[out / f"{stem}-rating.json"] = ratings_json(report).encode("utf-8")
+    return files
+
+
+def missing_of(model: Model) -> dict[str, tuple[str, ...]]:
+    """What a rating of each beam would lack, as far as the model alone can tell."""
+    return {beam.key: tuple(_missing(beam)) for beam in model.beams}
+
+
+def _missing(beam: Beam) -> Iterable[str]:
+    yield from (reason.text for reason in beam.reasons)
+    if beam.concrete_strength is None:
+        yield "concrete strength"
+    if not beam.reinforcement:
+        yield "reinforcement"
+    for source in beam.reinforcement:
+        yield from (reason.text for reason in source.reasons)

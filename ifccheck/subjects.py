@@ -1,0 +1,363 @@
+"""Joins what the model and the brief say of each beam into what its rating rests on."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass, field, replace
+from typing import TypeVar
+
+from ifccheck.beam import (
+    Bars,
+    Beam,
+    Contact,
+    Face,
+    Given,
+    Line,
+    Load,
+    Model,
+    Reason,
+    Reinforcement,
+    Remark,
+    Stirrups,
+    Support,
+)
+from ifccheck.brief.loads import loads_on_beams
+from ifccheck.brief.merging import Matches
+from ifccheck.brief.model import Brief
+from ifccheck.brief.statements import (
+    BeamStatement,
+    MaterialStatement,
+    default_materials,
+    materials,
+    span_reason,
+    statements,
+)
+from ifccheck.brief.supports import resolve_supports
+from ifccheck.detailing import choose_source, lay_out
+from ifccheck.frame.contacts import between_reactions, find_contacts, reactions_reason
+from ifccheck.frame.spans import single_span, support_faces
+from ifccheck.rating.subject import Subject, Unrated
+from ifccheck.standards import Standard
+
+Row = TypeVar("Row", Load, Remark)
+
+_DIRECT_CLASSES = ("IfcColumn", "IfcWall", "IfcFooting", "IfcPile", "IfcBearing")
+_LAYOUT_AGGREGATE = 20.0
+_THROUGH_THE_WEB = "loads are assumed to act through the web: torsion is not checked"
+
+
+@dataclass(frozen=True, slots=True)
+class Gathered:
+    """All beams of one model, ready to be rated or known not to be."""
+
+    subjects: tuple[Subject, ...]
+    unrated: tuple[Unrated, ...]
+    loads: tuple[Load, ...]
+    """On every beam, rated or not"""
+
+
+@dataclass(slots=True)
+class _Findings:
+    """Reasons and remarks on one beam while it is gathered."""
+
+    key: str
+    reasons: list[Reason] = field(default_factory=list)
+    remarks: list[Remark] = field(default_factory=list)
+
+    def refuse(self, text: str, *, blocking: bool = True) -> None:
+        """Note why the beam cannot be rated."""
+        self.reasons.append(Reason(text, blocking))
+
+    def assume(self, label: str, given: Given) -> Given:
+        """Note an assumed value."""
+        if given.assumed:
+            text = f"{label} assumed: {given.source}"
+            self.remarks.append(Remark(self.key, "basis", text, "assumption"))
+        return given
+
+
+@dataclass(frozen=True, slots=True)
+class _Sources:
+    """What is known of all beams of a model, by key."""
+
+    brief: Brief
+    standard: Standard
+    contacts: Mapping[str, Sequence[Contact]]
+    statements: Mapping[str, BeamStatement]
+    materials: Mapping[str, MaterialStatement]
+    defaults: MaterialStatement
+    supports: Mapping[str, tuple[Support, Support] | Reason]
+    support_remarks: Mapping[str, Sequence[Remark]]
+
+
+def gather(model: Model, brief: Brief, matches: Matches, standard: Standard) -> Gathered:
+    """Gather everything that the rating of each beam of a model rests on."""
+    beams = {beam.key: beam for beam in model.beams}
+    contacts = find_contacts(model.beams, model.members)
+    supports, remarks = resolve_supports(brief, matches, beams, contacts)
+    sources = _Sources(
+        brief=brief,
+        standard=standard,
+        contacts=contacts,
+        statements=statements(brief, matches),
+        materials=materials(brief, matches),
+        defaults=default_materials(brief),
+        supports=supports,
+        support_remarks=_by_beam(remarks),
+    )
+    lines = {
+        key: single_span(beams[key], pair, _stated_span(sources, key))
+        for key, pair in supports.items()
+        if not isinstance(pair, Reason) and beams[key].axis
+    }
+    spans = {key: line.spans[0] for key, line in lines.items()}
+    loads = loads_on_beams(brief, matches, beams, spans, contacts)
+    of_beam = _by_beam(loads)
+    found = [
+        _one(beam, sources, lines.get(beam.key), of_beam.get(beam.key, ())) for beam in model.beams
+    ]
+    return Gathered(
+        subjects=tuple(each for each in found if isinstance(each, Subject)),
+        unrated=tuple(each for each in found if isinstance(each, Unrated)),
+        loads=loads,
+    )
+
+
+def _by_beam(rows: Sequence[Row]) -> dict[str, list[Row]]:
+    grouped: dict[str, list[Row]] = {}
+    for row in rows:
+        if row.beam is not None:
+            grouped.setdefault(row.beam, []).append(row)
+    return grouped
+
+
+def _stated_span(sources: _Sources, key: str) -> float | None:
+    statement = sources.statements.get(key)
+    return statement.span.value if statement and statement.span else None
+
+
+def _one(
+    beam: Beam, sources: _Sources, line: Line | None, loads: Sequence[Load]
+) -> Subject | Unrated:
+    findings = _Findings(beam.key, list(beam.reasons), list(beam.remarks))
+    statement = sources.statements.get(beam.key, BeamStatement())
+    findings.remarks += [*sources.support_remarks.get(beam.key, ()), *statement.remarks]
+    concrete = _concrete(beam, sources, findings)
+    if line is None and beam.axis:
+        unknown = sources.supports[beam.key]
+        findings.refuse(unknown.text if isinstance(unknown, Reason) else "supports unknown")
+    elif line is not None:
+        supports = (line.spans[0].start_support, line.spans[0].end_support)
+        overhang = span_reason(statement, beam, supports)
+        findings.reasons += [overhang] if overhang else []
+    steel = _steel(beam, sources, findings) if beam.runs else None
+    _judge_loads(beam, sources, statement, line, loads, findings)
+    if line is None or steel is None or any(reason.blocking for reason in findings.reasons):
+        return Unrated(beam, _distinct(findings.reasons), tuple(findings.remarks))
+    return Subject(
+        beam=beam,
+        line=line,
+        faces=support_faces(line.spans[0]),
+        direct=_direct(sources.contacts.get(beam.key, ())),
+        bars=steel.bars,
+        stirrups=steel.stirrups,
+        stirrups_known=steel.stirrups_known,
+        silent=steel.silent,
+        reinforcement_source=steel.source,
+        loads=tuple(loads),
+        concrete_strength=concrete.strength,
+        unit_weight=Given(
+            sources.brief.basis.concrete_unit_weight, "brief, basis.concrete_unit_weight"
+        ),
+        density_factor=concrete.density_factor,
+        aggregate_size=concrete.aggregate_size,
+        bar_yield=steel.bar_yield,
+        stirrup_yield=steel.stirrup_yield,
+        reasons=_distinct(findings.reasons),
+        remarks=tuple(findings.remarks),
+    )
+
+
+def _distinct(reasons: Sequence[Reason]) -> tuple[Reason, ...]:
+    return tuple({reason.text: reason for reason in reasons}.values())
+
+
+# Concrete ------------------------------------------------------------------------------------
+
+
+@dataclass(frozen=True, slots=True)
+class _Concrete:
+    strength: Given
+    density_factor: Given
+    aggregate_size: Given
+
+
+def _first(*given: Given | None) -> Given | None:
+    return next((each for each in given if each is not None), None)
+
+
+def _concrete(beam: Beam, sources: _Sources, findings: _Findings) -> _Concrete:
+    stated = sources.materials.get(beam.key, MaterialStatement())
+    findings.remarks += stated.remarks
+    strength = _first(
+        stated.concrete_strength, beam.concrete_strength, sources.defaults.concrete_strength
+    )
+    if strength is None:
+        findings.refuse(
+            "concrete strength unknown: neither the model nor the brief gives one (write"
+            " defaults.concrete_strength or an entry of [[materials]])"
+        )
+        strength = Given(math.nan, "not known")
+    density = _first(stated.density, beam.concrete_density)
+    factor = sources.standard.density_factor(density.value if density else None)
+    return _Concrete(
+        strength=findings.assume("concrete strength", strength),
+        density_factor=Given(
+            factor, density.source if density else "normal density", assumed=density is None
+        ),
+        aggregate_size=_aggregate(stated, sources, findings),
+    )
+
+
+def _aggregate(stated: MaterialStatement, sources: _Sources, findings: _Findings) -> Given:
+    """Size of the aggregate; where no one gives it, checks that need it cannot be made."""
+    size = _first(stated.aggregate_size, sources.defaults.aggregate_size)
+    if size is None:
+        return Given(math.nan, "not given in the brief (defaults.aggregate_size)")
+    return findings.assume("largest aggregate", size)
+
+
+# Reinforcement ---------------------------------------------------------------------------------
+
+
+@dataclass(frozen=True, slots=True)
+class _Steel:
+    bars: tuple[Bars, ...]
+    stirrups: tuple[Stirrups, ...]
+    stirrups_known: bool
+    source: str
+    bar_yield: tuple[Given, ...]
+    stirrup_yield: tuple[Given, ...]
+    silent: tuple[Face, ...] = ()
+
+
+def _steel(beam: Beam, sources: _Sources, findings: _Findings) -> _Steel | None:
+    stated = sources.materials.get(beam.key, MaterialStatement())
+    chosen = choose_source(beam, sources.brief.sources)
+    findings.remarks += chosen.remarks
+    findings.reasons += chosen.reasons
+    if chosen.reinforcement is None:
+        return None
+    found = _placed(beam, chosen.reinforcement, sources, stated, findings)
+    yields = (
+        _yields(found.bars, stated.bar_yield, sources.defaults.bar_yield, "bars", findings),
+        _yields(
+            found.stirrups, stated.stirrup_yield, sources.defaults.stirrup_yield, "stirrups",
+            findings,
+        ),
+    )  # fmt: skip
+    return replace(found, bar_yield=yields[0], stirrup_yield=yields[1])
+
+
+def _placed(
+    beam: Beam,
+    reinforcement: Reinforcement,
+    sources: _Sources,
+    stated: MaterialStatement,
+    findings: _Findings,
+) -> _Steel:
+    """Bars and stirrups by place: as modelled, or laid out from a description."""
+    if not reinforcement.zones:
+        if reinforcement.bars and not reinforcement.stirrups:
+            text = "no stirrups are modelled: none are counted on"
+            findings.remarks.append(Remark(beam.key, "reinforcement", text, "doubt"))
+        modelled = reinforcement.source
+        return _Steel(reinforcement.bars, reinforcement.stirrups, True, modelled, (), ())
+    size = _aggregate_for_layout(stated, sources, findings)
+    laid = lay_out(
+        beam,
+        reinforcement.zones,
+        clear_spacing=lambda diameter: sources.standard.clear_spacing(diameter, size),
+        stated_cover=stated.cover,
+        fallback_cover=_first(beam.cover, sources.defaults.cover),
+    )
+    findings.remarks += laid.remarks
+    findings.reasons += laid.reasons
+    found = _Steel(laid.bars, laid.stirrups, laid.stirrups_known, reinforcement.source, (), ())
+    return replace(found, silent=laid.silent)
+
+
+def _aggregate_for_layout(
+    stated: MaterialStatement, sources: _Sources, findings: _Findings
+) -> float:
+    size = _first(stated.aggregate_size, sources.defaults.aggregate_size)
+    if size is not None:
+        return size.value
+    text = f"bars laid out for aggregate of {_LAYOUT_AGGREGATE:g} mm: the brief gives no size"
+    findings.remarks.append(Remark(findings.key, "reinforcement", text, "assumption"))
+    return _LAYOUT_AGGREGATE
+
+
+def _yields(
+    steel: Sequence[Bars | Stirrups],
+    stated: Given | None,
+    default: Given | None,
+    what: str,
+    findings: _Findings,
+) -> tuple[Given, ...]:
+    """Yield strength of each set: the brief's statement, the model's, the brief's default."""
+    found = [_first(stated, each.yield_strength, default) for each in steel]
+    if any(each is None for each in found):
+        findings.refuse(f"yield strength of the {what} unknown: neither model nor brief gives one")
+        return ()
+    given = tuple(each for each in found if each is not None)
+    for each in dict.fromkeys(given):
+        findings.assume(f"yield strength of the {what}", each)
+    return given
+
+
+# Loads and supports ------------------------------------------------------------------------------
+
+
+def _judge_loads(
+    beam: Beam,
+    sources: _Sources,
+    statement: BeamStatement,
+    line: Line | None,
+    loads: Sequence[Load],
+    findings: _Findings,
+) -> None:
+    """Note every doubt about what acts on the beam."""
+    if not loads and not statement.unloaded:
+        findings.refuse("no load assigned", blocking=False)
+    hung = sorted({load.origin for load in loads if load.face == "bottom"})
+    if hung:
+        places = ", ".join(hung)
+        findings.refuse(f"hung load: hanger steel is not checked ({places})", blocking=False)
+    if statement.torsion:
+        findings.refuse("torsion: it is not checked", blocking=False)
+    else:
+        findings.remarks.append(Remark(beam.key, "demand", _THROUGH_THE_WEB, "assumption"))
+    if line and not statement.loads_complete:
+        span = line.spans[0]
+        resting = between_reactions(
+            sources.contacts.get(beam.key, ()),
+            free_start=span.start_support.kind == "free",
+            free_end=span.end_support.kind == "free",
+        )
+        reason = reactions_reason(resting)
+        findings.reasons += [reason] if reason else []
+
+
+def _direct(contacts: Sequence[Contact]) -> tuple[bool, bool]:
+    """Whether the reaction presses into each end, by what the end touches.
+
+    An end that touches nothing, or only the side of another beam, is taken as not compressed.
+    """
+    pressed = {
+        contact.place
+        for contact in contacts
+        if contact.side == "below" or contact.other_class.startswith(_DIRECT_CLASSES)
+    }
+    return "start" in pressed, "end" in pressed
