@@ -19,6 +19,7 @@ from ifccheck.mechanics.arrays import ANCHOR_FULL, Demand, Members, Stations
 from ifccheck.mechanics.flexure import FlexuralStrength, flexural_strength
 from ifccheck.mechanics.width_profile import overhangs, pack_strips, strips_of
 from ifccheck.standards.contract import Options
+from ifccheck.standards.csa_a23_3_14 import materials
 from ifccheck.standards.csa_a23_3_14.flange import effective_overhangs
 from ifccheck.standards.csa_a23_3_14.flexure import (
     FLEXURE_HOGGING,
@@ -269,6 +270,39 @@ def test_effective_overhangs_by_hand(left, right, thickness, span, expected) -> 
         span=np.array(span),
     )  # fmt: skip
     assert tuple(map(float, kept)) == expected
+
+
+@pytest.mark.parametrize(
+    ("strength", "alpha1", "beta1"),
+    [(20.0, 0.82, 0.92), (30.0, 0.805, 0.895), (80.0, 0.73, 0.77), (130.0, 0.67, 0.67)],
+)
+def test_stress_block_by_hand(strength, alpha1, beta1) -> None:
+    """10.1.7: 0.85 - 0.0015 f'c and 0.97 - 0.0025 f'c, both at least 0.67."""
+    assert materials.block_stress_ratio(np.array(strength)) == pytest.approx(alpha1)
+    assert materials.block_depth_ratio(np.array(strength)) == pytest.approx(beta1)
+
+
+@pytest.mark.parametrize(
+    ("density", "factor"),
+    [(None, 1.0), (2400.0, 1.0), (2150.0, 1.0), (2149.0, 0.85), (1850.0, 0.75), (1500.0, 0.75)],
+)
+def test_density_factor_from_memory(density, factor) -> None:
+    """8.6.5, recalled."""
+    assert materials.density_factor(density) == factor
+
+
+@pytest.mark.parametrize("density", [0.0, -2400.0, math.nan])
+def test_a_density_that_is_none_gives_no_factor(density) -> None:
+    assert math.isnan(materials.density_factor(density))
+
+
+def test_concrete_modulus_by_hand() -> None:
+    """(3300 sqrt(f'c) + 6900)(density/2300)^1.5 for 1500 to 2500 kg/m3 (8.6.2.2)."""
+    strength = np.full(3, 36.0)
+    modulus = materials.concrete_modulus(
+        concrete_strength=strength, density=np.array([2300.0, 1840.0, 1400.0])
+    )
+    np.testing.assert_allclose(modulus, [26700.0, 26700.0 * 0.8**1.5, np.nan])
 
 
 # --- published figures

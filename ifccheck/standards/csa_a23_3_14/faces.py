@@ -324,6 +324,11 @@ def minimum_area(
     array [mm2]
         nan where there is no steel.
 
+    Notes
+    -----
+    bt is the greatest width in the tension half. A flange in tension counts up to 1.5 bw with
+    a flange on one side of the web and 2.5 bw with one on both (recalled).
+
     Examples
     --------
     >>> round(float(minimum_area(*map(np.array, (40.0, 400.0, 400.0, 600.0)))))

@@ -30,9 +30,9 @@ def effective_overhangs(
     Notes
     -----
     The limit for continuous beams, a tenth of the span, is used for every beam; simply
-    supported ones may have a fifth. The outline itself is taken as the T or L: slab that is
-    modelled apart adds nothing, and the outline ends before half the clear distance to the
-    next web.
+    supported ones may have a fifth. The limits are recalled. The outline itself is taken as
+    the T or L: slab that is modelled apart adds nothing, and the outline ends before half the
+    clear distance to the next web.
 
     Examples
     --------

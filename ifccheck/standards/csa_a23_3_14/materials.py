@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import math
+
 import numpy as np
 
 from ifccheck.mechanics.arrays import Bools, Floats
@@ -80,10 +82,10 @@ def density_factor(density: float | None) -> float:
     density : float [kg/m3] or None
         None is normal density.
 
-    Raises
-    ------
-    ValueError
-        Where the density is not a positive number.
+    Returns
+    -------
+    float
+        nan where the density is not a positive number.
 
     Notes
     -----
@@ -97,7 +99,7 @@ def density_factor(density: float | None) -> float:
     if density is None:
         return 1.0
     if not density > 0.0:
-        raise ValueError(f"concrete density {density:g} kg/m3 is not positive")
+        return math.nan
     if density >= NORMAL_DENSITY:
         return 1.0
     return 0.85 if density > LOW_DENSITY else 0.75

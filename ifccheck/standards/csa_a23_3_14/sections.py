@@ -221,6 +221,8 @@ def _groups(members: Members, stations: Stations) -> Iterator[tuple[Ints, int, i
     strips = _room(members.strips[..., 1] > members.strips[..., 0])[stations.section]
     most = int(strips.max(initial=1)) + 1
     kind = layers * most + strips
+    if not len(kind):
+        yield np.arange(0), 1, 1
     for code in np.flatnonzero(np.bincount(kind)).tolist():
         rows = np.flatnonzero(kind == code)
         for start in range(0, len(rows), AT_ONCE):
