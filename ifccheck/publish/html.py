@@ -12,6 +12,7 @@ from dataclasses import dataclass
 from markupsafe import Markup
 
 from ifccheck.beam import Beam, Combination, OutOfScope, Verdict
+from ifccheck.publish import tint
 from ifccheck.publish.plan import framing_plans
 from ifccheck.publish.report import Assumption, CaseSummary, Counts, Report
 from ifccheck.publish.sheet_html import (
@@ -43,7 +44,7 @@ def render(report: Report) -> str:
     """Return the summary as one HTML file."""
     rows = _rows(report)
     numbers = {row.key: row.number for row in rows}
-    style, script = asset("page.css"), asset("page.js")
+    style, script = tint.style() + asset("page.css"), asset("page.js")
     return template("page.html.j2").render(
         policy=_policy(style, script),
         style=Markup(style),

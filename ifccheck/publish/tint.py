@@ -41,6 +41,11 @@ def band(rating: Rating) -> str:
     return next((name for limit, name, _ in BANDS if rating.utilisation <= limit), "over")
 
 
+def style() -> str:
+    """Return the tints as variables of a style sheet."""
+    return f":root{{{''.join(f'--{name}:{colour};' for name, colour in COLOURS.items())}}}"
+
+
 def luminance(colour: str) -> float:
     """Relative luminance of ``#rrggbb``, from 0 for black to 1 for white.
 

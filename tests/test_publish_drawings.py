@@ -1,0 +1,291 @@
+"""The drawings: to scale, where the model says, with what was read."""
+
+from __future__ import annotations
+
+import math
+import re
+from dataclasses import replace
+from xml.etree import ElementTree
+
+import numpy as np
+import pytest
+from hypothesis import given
+from hypothesis import strategies as st
+
+from ifccheck.beam import Anchor, Axis
+from ifccheck.publish.drawings import diagram, section
+from ifccheck.publish.elevation import LEFT, RIGHT, WIDTH, Frame, elevation
+from ifccheck.publish.plan import framing_plans
+from ifccheck.publish.svg import thinned
+from ifccheck.sheet import Diagram, Sheet
+from tests.reports_made_up import made_up_report, rectangle, tee
+
+REPORT = made_up_report()
+ROWS = {beam.key: i for i, beam in enumerate(REPORT.model.beams)}
+SPAN_OF_STRIP = WIDTH - LEFT - RIGHT
+
+
+def sheet_of(mark: str) -> Sheet:
+    return REPORT.sheet(next(b.key for b in REPORT.model.beams if b.mark == mark))
+
+
+def of_class(svg: str, kind: str) -> list[ElementTree.Element]:
+    root = ElementTree.fromstring(svg)
+    return [e for e in root.iter() if kind in (e.get("class") or "").split()]
+
+
+def numbers(data: str) -> list[tuple[float, float]]:
+    found = [float(n) for n in re.findall(r"-?\d+(?:\.\d+)?", data)]
+    return list(zip(found[::2], found[1::2], strict=True))
+
+
+def texts(svg: str) -> list[str]:
+    return [e.text or "" for e in ElementTree.fromstring(svg).iter() if e.tag == "text"]
+
+
+def test_an_elevation_is_to_scale() -> None:
+    sheet = sheet_of("B-1000")
+    svg = elevation(sheet)
+    (body,) = of_class(svg, "concrete")
+    corners = numbers(body.get("d") or "")
+    wide = max(x for x, _ in corners) - min(x for x, _ in corners)
+    high = max(y for _, y in corners) - min(y for _, y in corners)
+    assert wide == pytest.approx(SPAN_OF_STRIP, abs=0.2)
+    assert high / wide == pytest.approx(600.0 / sheet.beam.length, rel=5e-3)
+    assert "to scale" in texts(svg)
+
+
+def test_a_slender_beam_says_how_much_its_heights_are_stretched() -> None:
+    sheet = sheet_of("B-1000")
+    axis = sheet.beam.axis
+    assert axis
+    run = replace(sheet.beam.runs[0], end=20_000.0)
+    beam = replace(sheet.beam, axis=replace(axis, length=20_000.0), runs=(run,))
+    svg = elevation(replace(sheet, beam=beam, span=None))
+    stretch = Frame(20_000.0, 600.0).exaggeration
+    assert stretch > 1
+    assert f"heights drawn {stretch} times the lengths" in texts(svg)
+    (body,) = of_class(svg, "concrete")
+    ys = [y for _, y in numbers(body.get("d") or "")]
+    assert max(ys) - min(ys) == pytest.approx(600 * stretch * SPAN_OF_STRIP / 20_000, abs=0.2)
+
+
+def test_bars_lie_where_they_are_and_show_how_they_end() -> None:
+    sheet = sheet_of("B-1000")
+    svg = elevation(sheet)
+    length = sheet.beam.length
+    soffit = max(y for _, y in numbers(of_class(svg, "concrete")[0].get("d") or ""))
+    along = SPAN_OF_STRIP / length
+    drawn = of_class(svg, "bar")
+    assert len(drawn) == len(sheet.bars)
+    for bars, element in zip(sheet.bars, drawn, strict=True):
+        (x0, y0), (x1, _), *hooks = numbers(element.get("d") or "")
+        assert x0 == pytest.approx(LEFT + bars.start * along, abs=0.1)
+        assert x1 == pytest.approx(LEFT + bars.end * along, abs=0.1)
+        assert soffit - y0 == pytest.approx(bars.z * along, abs=0.15)
+        assert bool(hooks) is (bars.start_anchor is Anchor.HOOK)
+    assert {"3-25M", "2-20M", "2-15M"} <= set(texts(svg))
+
+
+def test_stirrups_are_drawn_at_their_spacing() -> None:
+    sheet = sheet_of("B-1000")
+    along = SPAN_OF_STRIP / sheet.beam.length
+    for stirrups, element in zip(
+        sheet.stirrups, of_class(elevation(sheet), "stirrup"), strict=True
+    ):
+        places = [float(x) for x in re.findall(r"M(-?[\d.]+)", element.get("d") or "")]
+        assert len(places) == int((stirrups.end - stirrups.start) / stirrups.spacing)
+        steps = np.diff(places)
+        assert steps == pytest.approx(stirrups.spacing * along, abs=0.11)
+
+
+def test_a_downward_load_points_down_above_and_below_the_beam() -> None:
+    svg = elevation(sheet_of("B-1000"))
+    heads = [numbers(e.get("d") or "") for e in of_class(svg, "head")]
+    assert len(heads) == 2
+    for tip, *back in heads:
+        assert all(y < tip[1] for _, y in back)
+
+
+def test_every_support_pair_can_be_drawn() -> None:
+    svg = elevation(sheet_of("W-3"))
+    assert len(of_class(svg, "support")) == 2
+    assert len(of_class(svg, "fixed")) == 1
+
+
+def test_a_beam_whose_body_was_not_read_has_no_drawings() -> None:
+    sheet = sheet_of("X-9")
+    assert elevation(sheet) == ""
+    assert section(sheet) == ""
+
+
+@pytest.mark.parametrize("outline", [rectangle(350, 600), tee(300, 600, 1100, 150)], ids=str)
+def test_a_section_is_to_scale_with_its_bars(outline: object) -> None:
+    sheet = replace(sheet_of("B-1000"), section=outline)  # type: ignore[arg-type]
+    svg = section(sheet)
+    ring = sheet.section.rings[0] if sheet.section else ()
+    width = max(y for y, _ in ring) - min(y for y, _ in ring)
+    drawn = numbers(of_class(svg, "concrete")[0].get("d") or "")
+    scale = (max(x for x, _ in drawn) - min(x for x, _ in drawn)) / width
+    foot = max(y for _, y in drawn)
+    here = [b for b in sheet.bars if b.start <= sheet.section_x <= b.end]
+    circles = of_class(svg, "steel")
+    assert len(circles) == sum(bars.count for bars in here)
+    for bars, z in ((b, b.z) for b in here for _ in b.ys):
+        assert any(
+            foot - float(c.get("cy") or 0) == pytest.approx(z * scale, abs=0.15)
+            and float(c.get("r") or 0)
+            == pytest.approx(max(bars.diameter / 2 * scale, 1.6), abs=0.06)
+            for c in circles
+        )
+
+
+def test_a_section_shows_only_the_bars_that_are_there() -> None:
+    sheet = replace(sheet_of("B-1000"), section_x=100.0)
+    assert "2-20M" not in texts(section(sheet))
+    assert "2-20M" in texts(section(sheet_of("B-1000")))
+
+
+def test_left_is_left_seen_from_the_start() -> None:
+    sheet = sheet_of("B-1000")
+    bars = replace(sheet.bars[0], count=1, ys=(100.0,))
+    svg = section(replace(sheet, bars=(bars,)))
+    drawn = numbers(of_class(svg, "concrete")[0].get("d") or "")
+    middle = (max(x for x, _ in drawn) + min(x for x, _ in drawn)) / 2
+    (circle,) = of_class(svg, "steel")
+    assert float(circle.get("cx") or 0) < middle
+
+
+def made_up_diagram(**changes: object) -> Diagram:
+    x = np.linspace(0.0, 6000.0, 41)
+    moment = 100.0 * 4 * (x / 6000) * (1 - x / 6000)
+    given = Diagram(
+        "Moment", "kN*m", x, moment, 0.4 * moment, np.full_like(x, 125.0), np.full_like(x, -60.0),
+        3000.0,
+    )  # fmt: skip
+    return replace(given, **changes)  # type: ignore[arg-type]
+
+
+def test_demand_and_resistance_share_a_scale() -> None:
+    svg = diagram(made_up_diagram(), 6000.0)
+    (demand,) = of_class(svg, "at-demand")
+    (resistance,) = of_class(svg, "at-resistance")
+    axis = numbers(of_class(svg, "axis")[0].get("d") or "")[0][1]
+    up = [axis - float(e.get("cy") or 0) for e in (demand, resistance)]
+    assert up[0] / up[1] == pytest.approx(100.0 / 125.0, rel=5e-3)
+    assert float(demand.get("cx") or 0) == pytest.approx(LEFT + SPAN_OF_STRIP / 2, abs=0.1)
+    assert "x = 3.00 m" in texts(svg)
+
+
+def test_a_resistance_that_is_not_known_is_left_out() -> None:
+    resistance = np.full(41, 125.0)
+    resistance[10:20] = math.nan
+    svg = diagram(made_up_diagram(resistance_high=resistance), 6000.0)
+    lines = of_class(svg, "resistance")
+    assert sum((e.get("d") or "").count("M") for e in lines) == 3
+    assert "nan" not in svg
+
+
+def test_a_resistance_far_above_says_that_it_is_cut() -> None:
+    svg = diagram(made_up_diagram(resistance_high=np.full(41, 9000.0)), 6000.0)
+    assert "resistance beyond the drawing is not shown" in texts(svg)
+    assert "inf" not in diagram(made_up_diagram(resistance_high=np.full(41, math.inf)), 6000.0)
+
+
+def test_a_diagram_without_demand_can_be_drawn() -> None:
+    nothing = np.zeros(41)
+    svg = diagram(
+        made_up_diagram(demand_high=nothing, demand_low=nothing, governing_x=math.nan), 6000.0
+    )
+    ElementTree.fromstring(svg)
+    assert of_class(svg, "governs") == []
+
+
+@given(
+    st.lists(
+        st.tuples(st.floats(0, 700), st.floats(-100, 100)), min_size=0, max_size=60, unique=True
+    )
+)
+def test_a_thinned_line_stays_where_the_line_was(places: list[tuple[float, float]]) -> None:
+    places.sort()
+    kept = thinned(places)
+    assert set(kept) <= set(places)
+    assert kept[:1] == places[:1]
+    assert kept[-1:] == places[-1:]
+    curve = [(float(x), 60 * math.sin(x / 90)) for x in range(0, 690, 6)]
+    few = thinned(curve)
+    xs, ys = zip(*few, strict=True)
+    drawn = np.interp([x for x, _ in curve], xs, ys)
+    assert np.abs(drawn - [y for _, y in curve]).max() < 0.5
+
+
+def plan_of(storey: str) -> str:
+    plans = framing_plans(REPORT.model, REPORT.ratings, ROWS)
+    return next(plan.svg for plan in plans if plan.storey == storey)
+
+
+def along(svg: str, key: str) -> tuple[float, float]:
+    """The beam's direction and length on the drawing, from its first run's outline."""
+    for link in ElementTree.fromstring(svg).iter("a"):
+        if link.get("data-row") == str(ROWS[key]):
+            body = next(e for e in link.iter() if "body" in (e.get("class") or ""))
+            (x0, y0), (x1, y1), *_ = numbers(body.get("d") or "")
+            return x1 - x0, y0 - y1
+    raise AssertionError(key)
+
+
+def test_a_plan_is_true_in_length_and_direction_with_north_up() -> None:
+    svg = plan_of("Level 1")
+    scales = []
+    for beam in REPORT.model.beams:
+        if beam.storey != "Level 1" or beam.axis is None:
+            continue
+        east, north = along(svg, beam.key)
+        turned = math.degrees(math.atan2(north, east))
+        wanted = math.degrees(math.atan2(beam.axis.x[1], beam.axis.x[0]))
+        assert turned == pytest.approx(wanted, abs=0.1)
+        scales.append(math.hypot(east, north) / beam.length)
+    assert scales == pytest.approx([scales[0]] * len(scales), rel=2e-3)
+
+
+def test_a_sloped_beam_is_as_long_in_plan_as_its_projection() -> None:
+    svg = plan_of("Level 2")
+    ramp, level = (next(b for b in REPORT.model.beams if b.mark == m) for m in ("R-1", "B-2000"))
+    ratio = math.hypot(*along(svg, ramp.key)) / math.hypot(*along(svg, level.key))
+    assert ratio == pytest.approx(4000 * math.cos(0.22) / level.length, rel=2e-3)
+
+
+def test_falling_short_and_not_rated_can_be_told_without_colour() -> None:
+    svg = plan_of("Level 1")
+    for link in ElementTree.fromstring(svg).iter("a"):
+        key = next(k for k, row in ROWS.items() if str(row) == link.get("data-row"))
+        kinds = {k for e in link.iter() for k in (e.get("class") or "").split()}
+        verdict = str(REPORT.ratings[key].verdict)
+        assert ("over" in kinds and "dashes" in kinds) is (verdict == "falls short")
+        assert ("none" in kinds) is (verdict == "not rated")
+        assert "start" in kinds
+        title = link.find("title")
+        assert title is not None
+        assert verdict in (title.text or "")
+
+
+def test_a_beam_without_a_place_is_named_beside_the_plan() -> None:
+    plans = framing_plans(REPORT.model, REPORT.ratings, ROWS)
+    assert next(p for p in plans if p.storey == "Level 2").not_drawn == ("X-9",)
+    assert [p.storey for p in plans] == ["Level 1", "Level 2", "Roof"]
+
+
+def test_a_building_far_from_the_origin_is_drawn_the_same() -> None:
+    def moved(axis: Axis | None) -> Axis | None:
+        return axis and replace(
+            axis, origin=(axis.origin[0] + 5e8, axis.origin[1] - 3e8, axis.origin[2])
+        )
+
+    beams = tuple(replace(b, axis=moved(b.axis)) for b in REPORT.model.beams)
+    here = framing_plans(replace(REPORT.model, members=()), REPORT.ratings, ROWS)
+    there = framing_plans(replace(REPORT.model, members=(), beams=beams), REPORT.ratings, ROWS)
+    for near, far in zip(here, there, strict=True):
+        near_places, far_places = (
+            [float(n) for n in re.findall(r"-?\d+\.?\d*", p.svg)] for p in (near, far)
+        )
+        assert far_places == pytest.approx(near_places, abs=0.11)
