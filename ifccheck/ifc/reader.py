@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections import Counter
 from collections.abc import Iterator, Mapping, Sequence
+from dataclasses import replace
 from typing import Any, Protocol
 
 from ifccheck.beam import Beam, Box, Model, OutOfScope, Remark
@@ -11,9 +12,10 @@ from ifccheck.errors import ModelError
 from ifccheck.ifc.beams import BeamReader, Identity
 from ifccheck.ifc.boxes import Boxes
 from ifccheck.ifc.context import BeamFrame, Context, make_context
-from ifccheck.ifc.entity import Entity, text
+from ifccheck.ifc.entity import GLOBAL_ID, Entity, text_at
 from ifccheck.ifc.members import read_members
 from ifccheck.ifc.profiles import Profiles
+from ifccheck.ifc.reinforcement import read_reinforcement
 from ifccheck.ifc.storeys import Storeys
 
 STAGE = "reading"
@@ -80,7 +82,7 @@ def _identified(entities: Sequence[Entity]) -> Iterator[tuple[Entity, Identity]]
     """Each beam with its key: the GlobalId, numbered from its second appearance on."""
     seen: Counter[str] = Counter()
     for entity in entities:
-        guid = text(entity, "GlobalId")
+        guid = text_at(entity, GLOBAL_ID)
         ordinal = seen[guid]
         seen[guid] += 1
         key = guid if ordinal == 0 else f"{guid}~{ordinal + 1}"
@@ -88,7 +90,7 @@ def _identified(entities: Sequence[Entity]) -> Iterator[tuple[Entity, Identity]]
 
 
 def _repeats(entities: Sequence[Entity]) -> Iterator[Remark]:
-    counts = Counter(text(entity, "GlobalId") for entity in entities)
+    counts = Counter(text_at(entity, GLOBAL_ID) for entity in entities)
     for guid, count in counts.items():
         if count > 1:
             yield Remark(
@@ -103,8 +105,11 @@ def _repeats(entities: Sequence[Entity]) -> Iterator[Remark]:
 def _reinforced(
     context: Context, beams: Sequence[Beam], mapping: Mapping[str, str]
 ) -> Iterator[Beam]:
-    yield from beams
+    """The beams with what the model says of their reinforcement."""
     frames = {
         beam.step_id: BeamFrame(beam.axis, beam.runs) for beam in beams if beam.axis is not None
     }
-    del frames, context, mapping
+    found = read_reinforcement(context, frames, mapping)
+    for beam in beams:
+        reinforcement = found.get(beam.step_id, ())
+        yield replace(beam, reinforcement=reinforcement) if reinforcement else beam
