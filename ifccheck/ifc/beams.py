@@ -9,7 +9,16 @@ from dataclasses import dataclass, field
 from ifccheck.beam import Beam, Box, Given, OutOfScope, Reason, Remark, Run
 from ifccheck.ifc.bodies import body_items, read_prism
 from ifccheck.ifc.context import Context
-from ifccheck.ifc.entity import Entity, UnreadableError, get, text
+from ifccheck.ifc.entity import (
+    NAME,
+    OBJECT_TYPE,
+    TAG,
+    Entity,
+    UnreadableError,
+    get,
+    text,
+    text_at,
+)
 from ifccheck.ifc.materials import MaterialDefinition, Materials
 from ifccheck.ifc.profiles import Profiles
 from ifccheck.ifc.properties import PropertyValue, Sets
@@ -116,11 +125,16 @@ class BeamReader:
     ) -> Clues:
         step_id = entity.id()
         profile = straight.outline.name if straight is not None else ""
-        own = (text(entity, "Name"), text(entity, "ObjectType"), self._type_name(step_id), profile)
+        own = (
+            text_at(entity, NAME),
+            text_at(entity, OBJECT_TYPE),
+            self._type_name(step_id),
+            profile,
+        )
         strength_class = sets.get(GENERAL, {}).get("StrengthClass")
         return Clues(
             definition=definition,
-            names=tuple(dict.fromkeys(name for name in own if name)),
+            names=tuple(dict.fromkeys(one for one in own if one)),
             hosts_bars=self._hosts_bars(step_id),
             concrete_class=strength_class is not None and bool(strength_class.value),
         )
@@ -146,7 +160,7 @@ class BeamReader:
         return OutOfScope(
             guid=identity.guid,
             step_id=entity.id(),
-            name=text(entity, "Name") or text(entity, "Tag"),
+            name=text_at(entity, NAME) or text_at(entity, TAG),
             storey=self._storeys.name_of(entity.id()),
             reason=reason,
             evidence=evidence,
@@ -188,9 +202,9 @@ class BeamReader:
             step_id=step_id,
             model=self._model,
             ifc_class=entity.is_a(),
-            name=text(entity, "Name"),
-            tag=text(entity, "Tag"),
-            type_name=self._type_name(step_id) or text(entity, "ObjectType"),
+            name=text_at(entity, NAME),
+            tag=text_at(entity, TAG),
+            type_name=self._type_name(step_id) or text_at(entity, OBJECT_TYPE),
             storey=self._storeys.name_of(step_id),
             axis=straight.axis if straight is not None else None,
             runs=_runs(straight),

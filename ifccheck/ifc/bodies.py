@@ -2,17 +2,20 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Iterator
 from dataclasses import dataclass, replace
-from typing import TYPE_CHECKING
+from functools import cached_property
+from typing import TYPE_CHECKING, NamedTuple
 
 import numpy as np
 
-from ifccheck.ifc.clips import Cloud, Cut, Vector, read_cut
-from ifccheck.ifc.entity import Entity, UnreadableError, get, several
-from ifccheck.ifc.placements import IDENTITY, Matrix, cross_product, ratios
+from ifccheck.ifc.clips import Cloud, Cut, read_cut
+from ifccheck.ifc.entity import REPRESENTATION, Entity, UnreadableError, get, several
+from ifccheck.ifc.placements import IDENTITY, Matrix
 from ifccheck.ifc.profile_curves import Points
 from ifccheck.ifc.profiles import Profile, Profiles
+from ifccheck.ifc.vectors import Triple, combined, cross, scaled, unit
 
 if TYPE_CHECKING:
     from ifccheck.ifc.context import Context
@@ -45,11 +48,22 @@ NOT_READ_YET = {
     "IfcSectionedSolidHorizontal": "sectioned solid",
 }
 
+BOOLEANS = ("IfcBooleanResult", "IfcBooleanClippingResult")
+DEEPEST = 20
+"""Mapped items nested deeper than this refer to each other."""
 RIGID = 1e-9
 """How far from unit length and square an axis may be by rounding."""
 
-Placed = tuple[Entity, Matrix]
-"""A representation item and the matrix that carries it into the building."""
+UNIT = np.eye(2)
+
+
+class Placed(NamedTuple):
+    """A representation item, and the matrix that carries it into the building."""
+
+    item: Entity
+    matrix: Matrix
+    mapped: bool
+    """Through a mapped item, so that the matrix may scale and mirror."""
 
 
 @dataclass(frozen=True)
@@ -59,12 +73,8 @@ class Prism:
     profile: Profile
     matrix: Matrix
     """Rigid, from the profile's plane into the building; x and y are square unit vectors."""
-    along: Vector
+    along: Triple
     cuts: tuple[Cut, ...] = ()
-
-    def face(self) -> Cloud:
-        """Return the corners of the outer ring of the face that the extrusion starts from."""
-        return self.placed(self.profile.rings[0])
 
     def placed(self, points: Points) -> Cloud:
         """Return points of the profile's plane in the building."""
@@ -72,31 +82,31 @@ class Prism:
 
     def corners(self) -> Cloud:
         """Return the corners of the body before it is cut."""
-        face = self.face()
+        face = self.placed(self.profile.rings[0])
         return np.concatenate((face, face + self.along))
 
-    @property
-    def normal(self) -> Vector:
-        """Unit normal of the profile's plane, to the right hand of its x and y."""
-        x, y = self.matrix[:3, 0].tolist(), self.matrix[:3, 1].tolist()
-        return np.array(cross_product(x, y))
+    @cached_property
+    def axes(self) -> tuple[Triple, Triple, Triple]:
+        """The x, y of the profile's plane and the normal to their right hand."""
+        x, y, _ = self.matrix[:3, :3].T.tolist()
+        return x, y, cross(x, y)
 
 
 def body_items(context: Context, product: Entity) -> list[Placed]:
     """Return the items of a product's body, mapped ones resolved, each with its matrix."""
-    shape = get(product, "Representation")
+    shape = product[REPRESENTATION]
     representation = body_representation(shape) if shape is not None else None
     if representation is None:
         return []
-    matrix = context.placements.matrix(product)
-    return list(_resolved(context, representation, matrix, depth=0))
+    whole = context.placements.matrix(product)
+    return list(_resolved(context, representation, whole, depth=0))
 
 
 def body_representation(shape: Entity) -> Entity | None:
     """Return the representation that holds the body: the one named so, else the first solid."""
     solid: Entity | None = None
     for representation in several(shape, "Representations"):
-        name = get(representation, "RepresentationIdentifier")
+        name = representation[1]
         if name == "Body":
             return representation
         if solid is None and not name and representation[2] in SOLID_TYPES:
@@ -107,11 +117,11 @@ def body_representation(shape: Entity) -> Entity | None:
 def _resolved(
     context: Context, representation: Entity, matrix: Matrix, depth: int
 ) -> Iterator[Placed]:
-    if depth > 20:
+    if depth > DEEPEST:
         raise UnreadableError("mapped items refer to each other")
     for item in several(representation, "Items"):
-        if not item.is_a("IfcMappedItem"):
-            yield item, matrix
+        if item.is_a() != "IfcMappedItem":
+            yield Placed(item, matrix, depth > 0)
             continue
         source = get(item, "MappingSource")
         mapping = context.placements.operator(get(item, "MappingTarget"))
@@ -122,9 +132,9 @@ def _resolved(
 
 def read_prism(context: Context, profiles: Profiles, placed: Placed) -> Prism:
     """Return an extruded item with its cuts; raises UnreadableError for any other kind."""
-    item, matrix = placed
+    item, matrix, mapped = placed
     cuts: list[Cut] = []
-    while item.is_a("IfcBooleanResult"):
+    while item.is_a() in BOOLEANS:
         if get(item, "Operator") != "DIFFERENCE":
             raise UnreadableError(f"body is a boolean {get(item, 'Operator')}: not read yet")
         cuts.append(read_cut(get(item, "SecondOperand"), context.placements))
@@ -132,33 +142,34 @@ def read_prism(context: Context, profiles: Profiles, placed: Placed) -> Prism:
     kind = item.is_a()
     if kind != "IfcExtrudedAreaSolid":
         raise UnreadableError(f"body is a {NOT_READ_YET.get(kind, kind)}: not read yet")
-    prism = extrusion(context, profiles, item, matrix)
+    prism = extrusion(context, profiles, Placed(item, matrix, mapped))
     return replace(prism, cuts=tuple(cut.moved(matrix) for cut in cuts)) if cuts else prism
 
 
-def extrusion(context: Context, profiles: Profiles, item: Entity, matrix: Matrix) -> Prism:
+def extrusion(context: Context, profiles: Profiles, placed: Placed) -> Prism:
     """Return an IfcExtrudedAreaSolid in the building; the taper of a tapered one is not in it."""
+    item, matrix, mapped = placed
     profile = profiles.of(item[0])
     position = context.placements.axes(item[1])
     depth = item[3] * context.units.length
-    if not (np.isfinite(depth) and depth > 0.0):
+    if not (math.isfinite(depth) and depth > 0.0):
         raise UnreadableError(f"body is extruded by {depth:g} mm")
     whole = matrix if position is IDENTITY else matrix @ position
-    along = whole[:3, :3] @ np.array([ratio * depth for ratio in ratios(item[2][0])])
-    return _unscaled(profile, whole, along)
+    along = combined(whole[:3, :3].T.tolist(), scaled(unit(item[2][0]), depth))
+    return _unscaled(profile, whole, along) if mapped else Prism(profile, whole, along)
 
 
-def _unscaled(profile: Profile, matrix: Matrix, along: Vector) -> Prism:
+def _unscaled(profile: Profile, matrix: Matrix, along: Triple) -> Prism:
     """The prism of a profile whose plane may be scaled, mirrored or skewed by a mapped item."""
-    x, y = matrix[:3, 0], matrix[:3, 1]
-    square = abs(x @ y) < RIGID and abs(x @ x - 1.0) < RIGID and abs(y @ y - 1.0) < RIGID
-    if square:
+    plane = matrix[:3, :2]
+    if np.abs(plane.T @ plane - UNIT).max() < RIGID:
         return Prism(profile, matrix, along)
+    x, y = plane.T
     first = x / np.sqrt(x @ x)
     second = y - (y @ first) * first
     second /= np.sqrt(second @ second)
-    rigid = matrix.copy()
-    rigid[:3, 0], rigid[:3, 1] = first, second
     shape = np.eye(4)
     shape[:2, :2] = ((x @ first, y @ first), (0.0, y @ second))
+    rigid = matrix.copy()
+    rigid[:3, 0], rigid[:3, 1] = first, second
     return Prism(profile.moved(shape), rigid, along)

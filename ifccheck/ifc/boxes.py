@@ -9,11 +9,12 @@ from typing import TYPE_CHECKING
 import numpy as np
 
 from ifccheck.beam import Box
-from ifccheck.ifc.bodies import body_items, extrusion
+from ifccheck.ifc.bodies import BOOLEANS, Placed, Prism, body_items, extrusion
 from ifccheck.ifc.clips import Cloud, left_over, read_cut
 from ifccheck.ifc.entity import Entity, UnreadableError, get
-from ifccheck.ifc.placements import Matrix, cross_product
+from ifccheck.ifc.placements import Matrix
 from ifccheck.ifc.profiles import Profiles
+from ifccheck.ifc.vectors import Triple, added, combined, cross, dot, rounded
 
 if TYPE_CHECKING:
     from ifccheck.ifc.context import Context
@@ -45,31 +46,36 @@ class Boxes:
         if not placed:
             return None
         if len(placed) == 1:
-            cloud, axes = self._item(*placed[0])
+            if placed[0].item.is_a() == "IfcExtrudedAreaSolid":
+                return box_of_prism(extrusion(self._context, self._profiles, placed[0]))
+            cloud, axes = self._item(placed[0])
         else:
-            cloud, axes = np.vstack([self._item(*one)[0] for one in placed]), None
+            cloud, axes = np.vstack([self._item(one)[0] for one in placed]), None
         if axes is None:
-            axes = _rigid_axes(self._context.placements.matrix(product))
+            axes = np.ascontiguousarray(self._context.placements.matrix(product)[:3, :3].T)
         return box_round(cloud, axes)
 
-    def _item(self, item: Entity, matrix: Matrix) -> tuple[Cloud, Matrix | None]:
+    def _item(self, placed: Placed) -> tuple[Cloud, Matrix | None]:
         """Corners of an item in the building, and its own axes where it has some."""
-        if item.is_a("IfcBooleanResult"):
-            return self._boolean(item, matrix)
-        if item.is_a("IfcExtrudedAreaSolid"):
-            return self._extrusion(item, matrix)
-        if item.is_a("IfcCsgSolid"):
-            return self._item(get(item, "TreeRootExpression"), matrix)
+        item, matrix, _ = placed
+        kind = item.is_a()
+        if kind in ("IfcExtrudedAreaSolid", "IfcExtrudedAreaSolidTapered"):
+            return self._extrusion(placed)
+        if kind in BOOLEANS:
+            return self._boolean(placed)
+        if kind == "IfcCsgSolid":
+            return self._item(placed._replace(item=get(item, "TreeRootExpression")))
         if any(item.is_a(name) for name in FACETED):
             points = self._faceted(item)
             return points @ matrix[:3, :3].T + matrix[:3, 3], None
-        raise UnreadableError(f"extent of an {item.is_a()}")
+        raise UnreadableError(f"extent of an {kind}")
 
-    def _boolean(self, item: Entity, matrix: Matrix) -> tuple[Cloud, Matrix | None]:
-        cloud, axes = self._item(get(item, "FirstOperand"), matrix)
+    def _boolean(self, placed: Placed) -> tuple[Cloud, Matrix | None]:
+        item, matrix, _ = placed
+        cloud, axes = self._item(placed._replace(item=get(item, "FirstOperand")))
         operator, second = get(item, "Operator"), get(item, "SecondOperand")
         if operator == "UNION":
-            return np.vstack((cloud, self._item(second, matrix)[0])), None
+            return np.vstack((cloud, self._item(placed._replace(item=second))[0])), None
         if operator != "DIFFERENCE" or second.is_a() != "IfcHalfSpaceSolid":
             return cloud, axes  # the rest only takes something away: the box may be too large
         try:
@@ -79,16 +85,14 @@ class Boxes:
         rest = left_over(cloud, cut)
         return (rest if len(rest) else cloud), axes
 
-    def _extrusion(self, item: Entity, matrix: Matrix) -> tuple[Cloud, Matrix]:
-        prism = extrusion(self._context, self._profiles, item, matrix)
+    def _extrusion(self, placed: Placed) -> tuple[Cloud, Matrix]:
+        prism = extrusion(self._context, self._profiles, placed)
         cloud = prism.corners()
-        end_area = get(item, "EndSweptArea")
+        end_area = get(placed.item, "EndSweptArea")
         if end_area is not None:
             end = replace(prism, profile=self._profiles.of(end_area))
             cloud = np.concatenate((cloud, end.corners()))
-        side = np.array(prism.profile.longest_side)
-        x, z = prism.matrix[:3, :2] @ side, prism.normal
-        return cloud, np.array((x, cross_product(z.tolist(), x.tolist()), z))
+        return cloud, np.array(own_axes(prism))
 
     def _faceted(self, item: Entity) -> Cloud:
         step_id = item.id()
@@ -132,18 +136,33 @@ POINT_READERS: dict[str, Callable[[Entity], list[tuple[float, ...]]]] = {
 }
 
 
+def own_axes(prism: Prism) -> tuple[Triple, Triple, Triple]:
+    """Return the axes of an extrusion: along its profile's longest side, and square to that."""
+    x, y, normal = prism.axes
+    side = combined((x, y), prism.profile.longest_side)
+    return side, cross(normal, side), normal
+
+
+def box_of_prism(prism: Prism) -> Box:
+    """Return the box round an extrusion without its cuts."""
+    axes = own_axes(prism)
+    low_x, high_x, low_y, high_y = prism.profile.extent
+    low, high = [low_x, low_y, 0.0], [high_x, high_y, 0.0]
+    for number, axis in enumerate(axes):
+        reach = dot(axis, prism.along)
+        low[number] += min(0.0, reach)
+        high[number] += max(0.0, reach)
+    middle = [(a + b) / 2.0 for a, b in zip(low, high, strict=True)]
+    half = [(b - a) / 2.0 for a, b in zip(low, high, strict=True)]
+    centre = added(prism.matrix[:3, 3].tolist(), combined(axes, middle))
+    x, y, z = (rounded(axis) for axis in axes)
+    return Box(rounded(centre), (x, y, z), rounded(half))
+
+
 def box_round(cloud: Cloud, axes: Matrix) -> Box:
     """Return the box along three axes (rows) round points in the building [mm]."""
     local = cloud @ axes.T
     low, high = local.min(axis=0), local.max(axis=0)
-    x, y, z = (_triple(row) for row in axes)
-    return Box(_triple(((low + high) / 2.0) @ axes), (x, y, z), _triple((high - low) / 2.0))
-
-
-def _rigid_axes(matrix: Matrix) -> Matrix:
-    return np.ascontiguousarray(matrix[:3, :3].T)
-
-
-def _triple(values: Cloud) -> tuple[float, float, float]:
-    x, y, z = values.tolist()
-    return round(x, 9), round(y, 9), round(z, 9)
+    x, y, z = (rounded(row) for row in axes.tolist())
+    centre, half = ((low + high) / 2.0) @ axes, (high - low) / 2.0
+    return Box(rounded(centre.tolist()), (x, y, z), rounded(half.tolist()))

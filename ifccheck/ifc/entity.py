@@ -14,6 +14,10 @@ Entity = Any
 
 NO_SUCH_ATTRIBUTE = 0xFFFFFFFF
 
+# Positions that are the same in every schema, for the loops over every member.
+GLOBAL_ID, NAME, OBJECT_TYPE = 0, 2, 4  # of IfcRoot and IfcObject
+OBJECT_PLACEMENT, REPRESENTATION, TAG = 5, 6, 7  # of IfcProduct and IfcElement
+
 _positions: dict[tuple[str, str], int | None] = {}
 
 
@@ -35,6 +39,12 @@ def get(entity: Entity, name: str) -> Any:
 def text(entity: Entity, name: str) -> str:
     """Return a text attribute, empty where it is not given."""
     value = get(entity, name)
+    return value.strip() if isinstance(value, str) else ""
+
+
+def text_at(entity: Entity, position: int) -> str:
+    """Return the text attribute at a position, empty where it is not given."""
+    value = entity[position]
     return value.strip() if isinstance(value, str) else ""
 
 

@@ -9,7 +9,7 @@ from dataclasses import dataclass
 from ifccheck.beam import Box, Member, Remark
 from ifccheck.ifc.boxes import Boxes
 from ifccheck.ifc.context import Context
-from ifccheck.ifc.entity import Entity, UnreadableError, text
+from ifccheck.ifc.entity import GLOBAL_ID, NAME, TAG, Entity, UnreadableError, text_at
 from ifccheck.ifc.storeys import Storeys
 
 CLASSES = (
@@ -46,9 +46,9 @@ def read_members(
             members.append(
                 Member(
                     step_id=step_id,
-                    guid=text(entity, "GlobalId"),
+                    guid=text_at(entity, GLOBAL_ID),
                     ifc_class=entity.is_a(),
-                    name=text(entity, "Name") or text(entity, "Tag"),
+                    name=text_at(entity, NAME) or text_at(entity, TAG),
                     storey=storeys.name_of(step_id),
                     box=box,
                 )

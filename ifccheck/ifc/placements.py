@@ -2,16 +2,23 @@
 
 from __future__ import annotations
 
-import math
 from typing import Any
 
 import numpy as np
 import numpy.typing as npt
 
-from ifccheck.ifc.entity import Entity, UnreadableError, get, label, several
+from ifccheck.ifc import vectors
+from ifccheck.ifc.entity import (
+    OBJECT_PLACEMENT,
+    Entity,
+    UnreadableError,
+    get,
+    label,
+    several,
+)
+from ifccheck.ifc.vectors import Triple
 
 Matrix = npt.NDArray[np.float64]
-Direction = tuple[float, float, float]
 
 IDENTITY: Matrix = np.eye(4)
 IDENTITY.flags.writeable = False
@@ -28,11 +35,12 @@ class Placements:
         self.angle_scale = angle_scale
         self._objects: dict[int, Matrix] = {}
         self._axes: dict[int, Matrix] = {}
+        self._rotations: dict[tuple[int, int], Matrix] = {}
         self._grid_of_axis: dict[int, Entity] | None = None
 
     def matrix(self, product: Entity) -> Matrix:
         """Return the placement of a product in the building [mm]."""
-        placement = get(product, "ObjectPlacement")
+        placement = product[OBJECT_PLACEMENT]
         return IDENTITY if placement is None else self.placement(placement)
 
     def placement(self, placement: Entity) -> Matrix:
@@ -54,17 +62,15 @@ class Placements:
         return known
 
     def _placed(self, placement: Entity, parent: Matrix) -> Matrix:
-        if placement.is_a("IfcLocalPlacement"):
-            relative = get(placement, "RelativePlacement")
-            own = IDENTITY if relative is None else self.axes(relative)
+        kind = placement.is_a()
+        if kind == "IfcLocalPlacement":
+            own = self.axes(placement[1])
             return parent if own is IDENTITY else parent @ own
-        if placement.is_a("IfcGridPlacement"):
+        if kind == "IfcGridPlacement":
             return self._on_grid(placement, parent)
         position = get(placement, "CartesianPosition")
         if position is None:
-            raise UnreadableError(
-                f"placement is an {placement.is_a()} without a Cartesian position"
-            )
+            raise UnreadableError(f"placement is an {kind} without a Cartesian position")
         return parent @ self.axes(position)
 
     def axes(self, position: Entity | None) -> Matrix:
@@ -77,22 +83,28 @@ class Placements:
         return self._axes[step_id]
 
     def _read_axes(self, position: Entity) -> Matrix:
-        location = get(position, "Location")
-        if not location.is_a("IfcCartesianPoint"):
-            raise UnreadableError(f"{label(position)} lies at an {location.is_a()}")
-        origin = location[0]
-        if position.is_a("IfcAxis2Placement2D"):
-            axis, reference = None, get(position, "RefDirection")
-        elif position.is_a("IfcAxis2Placement3D"):
+        kind, location = position.is_a(), position[0]
+        if location is None or location.is_a() != "IfcCartesianPoint":
+            raise UnreadableError(f"{label(position)} does not lie at a Cartesian point")
+        if kind == "IfcAxis2Placement3D":
             axis, reference = position[1], position[2]
+        elif kind == "IfcAxis2Placement2D":
+            axis, reference = None, position[1]
         else:
             raise UnreadableError(f"{label(position)} is no axis placement that is read")
+        origin = location[0]
         if axis is None and reference is None and not any(origin):
             return IDENTITY
-        matrix = rigid(_given(axis), _given(reference))
+        matrix = self._rotation(axis, reference).copy()
         for row, coordinate in enumerate(origin):
             matrix[row, 3] = coordinate * self.scale
         return matrix
+
+    def _rotation(self, axis: Entity | None, reference: Entity | None) -> Matrix:
+        key = (0 if axis is None else axis.id(), 0 if reference is None else reference.id())
+        if key not in self._rotations:
+            self._rotations[key] = rigid(_given(axis), _given(reference))
+        return self._rotations[key]
 
     def operator(self, operator: Entity) -> Matrix:
         """Return a Cartesian transformation operator, which may scale and mirror [mm]."""
@@ -178,45 +190,26 @@ def rigid(axis: Any, reference: Any) -> Matrix:
 
     Missing or parallel directions are replaced as the standard ISO 10303-42 lays down.
     """
-    z = ratios(axis) if axis is not None else (0.0, 0.0, 1.0)
-    x = _square_to(z, ratios(reference) if reference is not None else (1.0, 0.0, 0.0))
+    z = vectors.unit(axis) if axis is not None else (0.0, 0.0, 1.0)
+    x = _square_to(z, vectors.unit(reference) if reference is not None else (1.0, 0.0, 0.0))
     if x is None:
         x = _square_to(z, (1.0, 0.0, 0.0) if abs(z[0]) < 0.9 else (0.0, 1.0, 0.0))
     assert x is not None  # one of two square directions is never parallel to z
-    y = cross_product(z, x)
+    y = vectors.cross(z, x)
     rows = zip(x, y, z, (0.0, 0.0, 0.0), strict=True)
     return np.array([*rows, (0.0, 0.0, 0.0, 1.0)])
 
 
-def _square_to(z: Direction, direction: Direction) -> Direction | None:
+def _square_to(z: Triple, direction: Triple) -> Triple | None:
     """The part of a direction square to z as a unit vector, None where it is parallel."""
-    along = direction[0] * z[0] + direction[1] * z[1] + direction[2] * z[2]
-    x, y, height = (value - along * part for value, part in zip(direction, z, strict=True))
-    length = math.sqrt(x * x + y * y + height * height)
-    return None if length < PARALLEL else (x / length, y / length, height / length)
-
-
-def cross_product(first: Direction, second: Direction) -> Direction:
-    """Return the vector square to two others."""
-    return (
-        first[1] * second[2] - first[2] * second[1],
-        first[2] * second[0] - first[0] * second[2],
-        first[0] * second[1] - first[1] * second[0],
-    )
+    part = vectors.added(direction, vectors.scaled(z, -vectors.dot(direction, z)))
+    length = vectors.size(part)
+    return None if length < PARALLEL else vectors.scaled(part, 1.0 / length)
 
 
 def unit(direction: Any) -> npt.NDArray[np.float64]:
     """Return a direction of two or three ratios as a unit vector in space."""
-    return np.array(ratios(direction))
-
-
-def ratios(direction: Any) -> Direction:
-    """Return a direction of two or three ratios as the parts of a unit vector."""
-    x, y, z = direction if len(direction) == 3 else (*direction, 0.0)
-    length = math.sqrt(x * x + y * y + z * z)
-    if not math.isfinite(length) or length == 0.0:
-        raise UnreadableError("a direction of no length")
-    return x / length, y / length, z / length
+    return np.array(vectors.unit(direction))
 
 
 def cross(first: Matrix, second: Matrix, offsets: list[float]) -> tuple[float, float]:

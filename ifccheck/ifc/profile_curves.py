@@ -82,12 +82,12 @@ def ring(pieces: Sequence[Piece], hole: bool = False) -> Points:
     """Return a closed polygon from the pieces of its edge, anticlockwise (a hole clockwise)."""
     rough = clean([place for piece in pieces for place in _traced(piece, True)])
     anticlockwise = signed_area(rough) > 0
-    points = rough
+    places = rough
     if any(isinstance(piece, Arc) for piece in pieces):
         # material lies left of an anticlockwise outer edge: an arc turning left bulges out
         outward = anticlockwise != hole
-        points = clean([place for piece in pieces for place in _traced(piece, outward)])
-    return points if anticlockwise != hole else points[::-1]
+        places = clean([place for piece in pieces for place in _traced(piece, outward)])
+    return np.array(places if anticlockwise != hole else places[::-1])
 
 
 def _traced(piece: Piece, left_turns_inside: bool) -> list[Place]:
@@ -96,22 +96,31 @@ def _traced(piece: Piece, left_turns_inside: bool) -> list[Place]:
     return piece.traced(inside=piece.anticlockwise == left_turns_inside)
 
 
-def clean(places: Sequence[Place]) -> Points:
+def clean(places: Sequence[Place]) -> list[Place]:
     """Return the corners of a closed polygon without repeated points."""
-    points: Points = np.asarray(places, dtype=float).reshape(-1, 2)
-    if not np.isfinite(points).all():
-        raise UnreadableError("an outline with coordinates that are no numbers")
-    keep = np.abs(points - before(points)).max(axis=1) > SAME_POINT
-    points = points[keep]
-    if len(points) < 3:
+    kept: list[Place] = []
+    last = places[-1] if places else (0.0, 0.0)
+    for place in places:
+        if not (math.isfinite(place[0]) and math.isfinite(place[1])):
+            raise UnreadableError("an outline with coordinates that are no numbers")
+        if abs(place[0] - last[0]) > SAME_POINT or abs(place[1] - last[1]) > SAME_POINT:
+            kept.append(place)
+            last = place
+    if len(kept) < 3:
         raise UnreadableError("an outline with fewer than three corners")
-    return points
+    return kept
 
 
-def signed_area(points: Points) -> float:
+def signed_area(places: Sequence[Place]) -> float:
     """Return the area of a polygon [mm2], positive where it runs anticlockwise."""
-    x, y = (points - points[0]).T
-    return float(0.5 * (x @ after(y) - y @ after(x)))
+    x0, y0 = places[0]
+    twice = 0.0
+    x1, y1 = places[-1][0] - x0, places[-1][1] - y0
+    for x, y in places:
+        x2, y2 = x - x0, y - y0
+        twice += x1 * y2 - x2 * y1
+        x1, y1 = x2, y2
+    return twice / 2.0
 
 
 def after(points: Points) -> Points:

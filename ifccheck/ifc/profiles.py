@@ -50,8 +50,8 @@ class Elevation:
 class Turned:
     """A profile turned into the axes of a member: y to the left, z up, about its own origin."""
 
-    rings: tuple[Points, ...]
-    centroid: Place
+    corners: tuple[Place, ...]
+    """Corners of the outer ring, then the centroid."""
     low: Place
     """Least y and z of the outer ring [mm]."""
     high: Place
@@ -69,7 +69,7 @@ class Profile:
     @cached_property
     def area(self) -> float:
         """Area [mm2]."""
-        return sum(signed_area(points) for points in self.rings)
+        return sum(signed_area(points.tolist()) for points in self.rings)
 
     @cached_property
     def centroid(self) -> Place:
@@ -101,19 +101,29 @@ class Profile:
         return x / length, y / length
 
     @cached_property
+    def extent(self) -> tuple[float, float, float, float]:
+        """Least and greatest coordinates along its longest side and to the left of it [mm]."""
+        x, y = self.longest_side
+        local = self.rings[0] @ np.array(((x, -y), (y, x)))
+        (low_x, low_y), (high_x, high_y) = local.min(axis=0).tolist(), local.max(axis=0).tolist()
+        return low_x, high_x, low_y, high_y
+
+    @cached_property
     def elevation(self) -> Elevation | None:
         """The profile as an elevation, None where it has no two parallel long sides."""
         return as_elevation(self.rings[0]) if len(self.rings) == 1 else None
 
-    def turned(self, turn: Matrix) -> Turned:
-        """Return the profile in other axes; ``turn`` is orthogonal or a projection (2, 2)."""
-        key = tuple(round(value, 9) for value in turn.ravel().tolist())
+    def turned(self, yx: float, yy: float, zx: float, zy: float) -> Turned:
+        """Return the profile in other axes: y = yx X + yy Y, z = zx X + zy Y."""
+        key = (round(yx, 9), round(yy, 9), round(zx, 9), round(zy, 9))
         if key not in self._turned:
-            self._turned[key] = self._turn(np.array(key).reshape(2, 2))
+            self._turned[key] = self._turn(key)
         return self._turned[key]
 
-    def _turn(self, turn: Matrix) -> Turned:
-        moved = self.moved(np.block([[turn, np.zeros((2, 2))], [np.zeros((2, 2)), np.eye(2)]]))
+    def _turn(self, turn: tuple[float, float, float, float]) -> Turned:
+        matrix = np.eye(4)
+        matrix[:2, :2] = np.reshape(turn, (2, 2))
+        moved = self.moved(matrix)
         low, high = moved.rings[0].min(axis=0).tolist(), moved.rings[0].max(axis=0).tolist()
         middle = np.array(((low[0] + high[0]) / 2.0, low[1]))
         rings = tuple(
@@ -121,7 +131,8 @@ class Profile:
             for points in moved.rings
         )
         outline = Outline(rings, self.name)
-        return Turned(moved.rings, moved.centroid, (low[0], low[1]), (high[0], high[1]), outline)
+        corners = (*((y, z) for y, z in moved.rings[0].tolist()), moved.centroid)
+        return Turned(corners, (low[0], low[1]), (high[0], high[1]), outline)
 
     def moved(self, matrix: Matrix) -> Profile:
         """Return the profile after a transformation in its plane, mirrored ones included."""
@@ -220,13 +231,11 @@ class Profiles:
                 raise UnreadableError(f"{profile.is_a()} without {name}")
             return default if value is None and default is not None else float(value) * scale
 
-        for slope in ("FlangeSlope", "WebSlope", "LegSlope", "BottomFlangeSlope", "TopFlangeSlope"):
+        family = FAMILIES[profile.is_a()]
+        for slope in SLOPES.get(family, ()):
             if get(profile, slope):
                 raise UnreadableError(f"{profile.is_a()} with sloping faces")
-        rings = tuple(
-            ring(pieces, hole=number > 0)
-            for number, pieces in enumerate(FAMILIES[profile.is_a()](length))
-        )
+        rings = tuple(ring(pieces, hole=number > 0) for number, pieces in enumerate(family(length)))
         matrix = self._placements.axes(get(profile, "Position"))
         return Profile(rings) if matrix is IDENTITY else Profile(rings).moved(matrix)
 
@@ -480,3 +489,12 @@ FAMILIES: dict[str, Callable[[Length], Edges]] = {
     "IfcCShapeProfileDef": _c_shape,
     "IfcZShapeProfileDef": _z_shape,
 }
+
+SLOPES: dict[Callable[[Length], Edges], tuple[str, ...]] = {
+    _i_shape: ("FlangeSlope",),
+    _asymmetric_i_shape: ("BottomFlangeSlope", "TopFlangeSlope"),
+    _t_shape: ("FlangeSlope", "WebSlope"),
+    _l_shape: ("LegSlope",),
+    _u_shape: ("FlangeSlope",),
+}
+"""Attributes by which the faces of a family may slope."""

@@ -6,11 +6,23 @@ from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass
 from typing import Any
 
-from ifccheck.ifc.entity import Entity, UnreadableError, get, several, text
+from ifccheck.ifc.entity import Entity, UnreadableError, get, several, text, text_at
 from ifccheck.ifc.relations import Relations
 from ifccheck.ifc.units import MEASURE_KINDS, ModelUnits, UnitKind, scale_of
 
-MECHANICAL = "IfcMechanicalMaterialProperties"
+HELD_BY = {
+    "IfcElementQuantity": "Quantities",
+    "IfcMaterialProperties": "Properties",
+    "IfcExtendedMaterialProperties": "ExtendedProperties",
+}
+"""The attribute that holds the values of a set, where it is not HasProperties."""
+IN_ATTRIBUTES = (
+    "IfcGeneralMaterialProperties",
+    "IfcMechanicalMaterialProperties",
+    "IfcMechanicalConcreteMaterialProperties",
+    "IfcMechanicalSteelMaterialProperties",
+)
+"""IFC2X3 keeps the common material values in attributes of these."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -83,29 +95,27 @@ class Properties:
         return self._by_set[step_id]
 
     def _values(self, entity: Entity) -> Iterator[tuple[str, PropertyValue]]:
-        if entity.is_a("IfcElementQuantity"):
-            for quantity in several(entity, "Quantities"):
-                yield text(quantity, "Name"), self._quantity(quantity)
-            return
-        held = "Properties" if entity.is_a("IfcMaterialProperties") else "HasProperties"
-        held = "ExtendedProperties" if entity.is_a("IfcExtendedMaterialProperties") else held
-        for item in several(entity, held):
-            yield from self._property(item, "")
-        if entity.is_a(MECHANICAL) or entity.is_a("IfcGeneralMaterialProperties"):
+        kind = entity.is_a()
+        for item in several(entity, HELD_BY.get(kind, "HasProperties")):
+            if kind == "IfcElementQuantity":
+                yield text_at(item, 0), self._quantity(item)
+            else:
+                yield from self._property(item, "")
+        if kind in IN_ATTRIBUTES:
             yield from self._attributes(entity)
 
     def _property(self, item: Entity, prefix: str) -> Iterator[tuple[str, PropertyValue]]:
-        name = prefix + text(item, "Name")
-        if item.is_a("IfcComplexProperty"):
+        kind, name = item.is_a(), prefix + text_at(item, 0)
+        if kind == "IfcPropertySingleValue":
+            yield name, self._value(item, item[2], item[3])
+        elif kind == "IfcComplexProperty":
             for inner in several(item, "HasProperties"):
                 yield from self._property(inner, name + ".")
-        elif item.is_a("IfcPropertySingleValue"):
-            yield name, self._value(item, get(item, "NominalValue"), get(item, "Unit"))
-        elif item.is_a("IfcPropertyListValue"):
+        elif kind == "IfcPropertyListValue":
             yield name, self._list(item, several(item, "ListValues"), get(item, "Unit"))
-        elif item.is_a("IfcPropertyEnumeratedValue"):
+        elif kind == "IfcPropertyEnumeratedValue":
             yield name, self._list(item, several(item, "EnumerationValues"), None)
-        elif item.is_a("IfcPropertyBoundedValue"):
+        elif kind == "IfcPropertyBoundedValue":
             bounds = [get(item, "LowerBoundValue"), get(item, "UpperBoundValue")]
             given = tuple(bound for bound in bounds if bound is not None)
             yield name, self._list(item, given, get(item, "Unit"))
@@ -146,7 +156,6 @@ class Properties:
         return own_kind, factor
 
     def _attributes(self, entity: Entity) -> Iterator[tuple[str, PropertyValue]]:
-        """IFC2X3 keeps the common material values in attributes, not in properties."""
         for name, kind in (
             ("CompressiveStrength", "pressure"),
             ("YoungModulus", "pressure"),

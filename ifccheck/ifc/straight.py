@@ -17,11 +17,12 @@ import numpy as np
 
 from ifccheck.beam import Axis, Box, Outline
 from ifccheck.ifc.bodies import Prism
-from ifccheck.ifc.clips import Vector, acts
+from ifccheck.ifc.clips import acts
 from ifccheck.ifc.entity import UnreadableError
-from ifccheck.ifc.placements import Matrix, cross_product
-from ifccheck.ifc.profile_curves import Corner, Points, ring
+from ifccheck.ifc.placements import Matrix
+from ifccheck.ifc.profile_curves import Corner, Place, after, ring
 from ifccheck.ifc.profiles import Elevation, Profile, Turned
+from ifccheck.ifc.vectors import Triple, added, combined, cross, dot, rounded, scaled, size
 
 VERTICAL = math.cos(math.radians(10.0))
 """A member within ten degrees of the vertical stands."""
@@ -33,10 +34,15 @@ STEEP_CUT = 0.5
 """Slant of an end in elevation, along the axis per height, beyond which the depth near the
 end is in doubt."""
 TIE = 1e-6
+SQUARE = 1e-12
+"""Slant of an end below which it is square."""
+ALONG = 1e-6
+"""Sine of the angle below which a plane runs along the span."""
 VARIES = "section varies along the beam: not read yet"
 
-Place3 = tuple[float, float, float]
-Plane = tuple[Vector, float]
+Axes = tuple[Triple, Triple, Triple]
+"""x along the span from the start, y to the left, z up."""
+Plane = tuple[Triple, float]
 """A plane that ends a member: outward normal in the member's axes, and its distance from the
 member's base point along that normal."""
 
@@ -54,19 +60,27 @@ class Straight:
     """Whether the depth near the start and the end is reduced by the slant."""
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, slots=True)
 class _Member:
-    """A section in the axes (rows of ``frame``) of a member, about a base point."""
+    """A section in the axes of a member, about a base point in the building."""
 
-    frame: Matrix
-    base: Vector
+    axes: Axes
+    base: Triple
     section: Turned
     planes: tuple[Plane, ...]
+
+    def inner(self, vector: Sequence[float]) -> Triple:
+        """Return a vector of the building in the member's axes."""
+        return _inner(self.axes, vector)
+
+    def outer(self, local: Sequence[float]) -> Triple:
+        """Return a place in the member's axes, in the building, without noise."""
+        return rounded(added(self.base, combined(self.axes, local)))
 
 
 def straighten(prism: Prism, placement: Matrix) -> Straight:
     """Return a prism as a straight member; raises UnreadableError where it is none."""
-    length = math.sqrt(prism.along @ prism.along)
+    length = size(prism.along)
     elevation = prism.profile.elevation
     if elevation is None:
         if length < prism.profile.diameter:
@@ -85,58 +99,66 @@ def _require_clear(length: float, side: float, depth: float) -> None:
     """Raise UnreadableError where nobody can tell along which side the beam spans."""
     ranked = sorted((length, side, depth), reverse=True)
     if ranked[0] < CLEARLY_LONGER * ranked[1]:
-        size = " x ".join(f"{value:.0f}" for value in ranked)
-        raise UnreadableError(f"span direction unclear: body is {size} mm")
+        body = " x ".join(f"{value:.0f}" for value in ranked)
+        raise UnreadableError(f"span direction unclear: body is {body} mm")
 
 
 def _along_extrusion(prism: Prism, placement: Matrix) -> _Member:
-    frame = _frame(prism.along, placement)
-    section = prism.profile.turned(frame[1:] @ prism.matrix[:3, :2])
-    normal = frame @ prism.normal
-    reach = frame @ prism.along
-    if normal @ reach < 0.0:
-        normal = -normal
-    planes = ((-normal, 0.0), (normal, float(normal @ reach)))
-    return _Member(frame, prism.matrix[:3, 3], section, planes)
+    axes = _axes(prism.along, placement)
+    _, left, up = axes
+    x, y, normal = prism.axes
+    section = prism.profile.turned(dot(left, x), dot(left, y), dot(up, x), dot(up, y))
+    normal = _inner(axes, normal)
+    reach = dot(normal, _inner(axes, prism.along))
+    if reach < 0.0:
+        normal, reach = scaled(normal, -1.0), -reach
+    planes = ((scaled(normal, -1.0), 0.0), (normal, reach))
+    a, b, c = prism.matrix[:3, 3].tolist()
+    return _Member(axes, (a, b, c), section, planes)
 
 
 def _along_elevation(prism: Prism, elevation: Elevation, placement: Matrix) -> _Member:
     """The body swept along the two parallel sides of its profile, ended by the other sides."""
     corners = prism.placed(elevation.corners)
-    count = len(corners)
-    sides = [corners[(row + 1) % count] - corners[row] for row in range(count)]
-    frame = _frame(sides[elevation.first], placement)
+    sides = after(corners) - corners
+    axes = _axes(sides[elevation.first].tolist(), placement)
+    frame = np.array(axes)
     base = corners[elevation.first]
     local = (corners - base) @ frame.T
     width = frame @ prism.along
     far = local[elevation.second]
-    around = [(0.0, 0.0), width[1:], width[1:] + far[1:], far[1:]]
+    around = ((0.0, 0.0), width[1:], width[1:] + far[1:], far[1:])
     section = ring([Corner((float(y), float(z))) for y, z in around])
     middle = local.mean(axis=0)
-    planes = []
-    for row in range(count):
+    planes: list[Plane] = []
+    for row, side in enumerate(sides @ frame.T):
         if row not in (elevation.first, elevation.second):
-            normal = np.array(cross_product((frame @ sides[row]).tolist(), width.tolist()))
-            normal = normal if normal @ (local[row] - middle) > 0.0 else -normal
-            planes.append((normal, float(normal @ local[row])))
-    turned = Profile((section,), prism.profile.name).turned(np.eye(2))
-    return _Member(frame, base, turned, tuple(planes))
+            normal = cross(side.tolist(), width.tolist())
+            if dot(normal, (local[row] - middle).tolist()) < 0.0:
+                normal = scaled(normal, -1.0)
+            planes.append((normal, dot(normal, local[row].tolist())))
+    turned = Profile((section,), prism.profile.name).turned(1.0, 0.0, 0.0, 1.0)
+    a, b, c = base.tolist()
+    return _Member(axes, (a, b, c), turned, tuple(planes))
 
 
-def _frame(span: Vector, placement: Matrix) -> Matrix:
-    """Rows: the axes x along the span from the start, y to the left, z up."""
-    a, b, c = span.tolist()
-    length = math.sqrt(a * a + b * b + c * c)
-    x = (a / length, b / length, c / length)
+def _axes(span: Sequence[float], placement: Matrix) -> Axes:
+    """The axes of a member that runs along ``span``, from its start."""
+    x = scaled(span, 1.0 / size(span))
     if abs(x[2]) > VERTICAL:
         raise UnreadableError("vertical member")
-    cosines = (np.array(x) @ placement[:3, :3]).tolist()
+    cosines = [dot(x, column) for column in placement[:3, :3].T.tolist()]
     most = max(abs(value) for value in cosines)
     if next(value for value in cosines if abs(value) >= most - TIE) < 0.0:
-        x = (-x[0], -x[1], -x[2])
+        x = scaled(x, -1.0)
     level = math.hypot(x[0], x[1])
     y = (-x[1] / level, x[0] / level, 0.0)
-    return np.array((x, y, cross_product(x, y)))
+    return x, y, cross(x, y)
+
+
+def _inner(axes: Axes, vector: Sequence[float]) -> Triple:
+    x, y, z = axes
+    return dot(x, vector), dot(y, vector), dot(z, vector)
 
 
 def _cut_planes(prism: Prism, member: _Member) -> tuple[Plane, ...]:
@@ -144,7 +166,7 @@ def _cut_planes(prism: Prism, member: _Member) -> tuple[Plane, ...]:
         return ()
     corners = prism.corners()
     return tuple(
-        (member.frame @ cut.outward, float(cut.outward @ (cut.point - member.base)))
+        (member.inner(cut.outward.tolist()), float(cut.outward @ (cut.point - member.base)))
         for cut in prism.cuts
         if acts(cut, corners)
     )
@@ -152,60 +174,60 @@ def _cut_planes(prism: Prism, member: _Member) -> tuple[Plane, ...]:
 
 def _finished(member: _Member, cuts: tuple[Plane, ...]) -> Straight:
     section, planes = member.section, member.planes + cuts
-    starts, ends = _reach(planes, section.rings[0])
-    (start,), (end,) = _reach(planes, np.array([section.centroid]))
-    length = float(end - start)
+    starts, ends = _reach(planes, section.corners)
+    length = ends[-1] - starts[-1]
     if not length > 0.0:
         raise UnreadableError("nothing is left of the body after its cuts")
-    first, last = float(starts.min()), float(ends.max())
-    oblique = float(starts.max()) - first, last - float(ends.min())
-    if sum(oblique) > OBLIQUE_SHARE * length or (ends <= starts).any():
+    first, last = min(starts), max(ends)
+    oblique = max(starts) - first, last - min(ends)
+    if sum(oblique) > OBLIQUE_SHARE * length or max(starts) >= min(ends):
         raise UnreadableError(VARIES)
     low, high = (first, *section.low), (last, *section.high)
-    x, y, z = (_triple(row) for row in member.frame)
-    origin = (float(start), (section.low[0] + section.high[0]) / 2.0, section.low[1])
-    axis = Axis(_place(member, origin), x, y, z, round(length, 6))
-    centre = [(a + b) / 2.0 for a, b in zip(low, high, strict=True)]
+    origin = (starts[-1], (low[1] + high[1]) / 2.0, low[2])
+    middle = [(a + b) / 2.0 for a, b in zip(low, high, strict=True)]
     half = [(b - a) / 2.0 for a, b in zip(low, high, strict=True)]
-    box = Box(_place(member, centre), (x, y, z), _triple(half))
-    steep = _steep(planes, section.rings[0], starts, ends)
-    return Straight(axis, section.outline, box, oblique, steep)
+    x, y, z = (rounded(axis) for axis in member.axes)
+    return Straight(
+        axis=Axis(member.outer(origin), x, y, z, round(length, 6)),
+        outline=section.outline,
+        box=Box(member.outer(middle), (x, y, z), rounded(half)),
+        oblique=oblique,
+        steep=_steep(planes, section.corners, starts, ends),
+    )
 
 
-def _reach(planes: Sequence[Plane], points: Points) -> tuple[Vector, Vector]:
-    """Where lines along the span through points of the outline start and end [mm]."""
-    starts = np.full(len(points), -np.inf)
-    ends = np.full(len(points), np.inf)
-    for normal, offset in planes:
-        size = math.sqrt(normal @ normal)
-        if abs(normal[0]) < 1e-6 * size:
-            raise UnreadableError("body is cut along its length: not read yet")
-        reach = (offset - points @ normal[1:]) / normal[0]
-        if normal[0] > 0:
-            np.minimum(ends, reach, out=ends)
+def _reach(planes: Sequence[Plane], places: Sequence[Place]) -> tuple[list[float], list[float]]:
+    """Where lines along the span through places of the outline start and end [mm]."""
+    starts, ends = [-math.inf] * len(places), [math.inf] * len(places)
+    for plane in planes:
+        reach = _reach_of(plane, places)
+        if plane[0][0] > 0.0:
+            ends = list(map(min, ends, reach))
         else:
-            np.maximum(starts, reach, out=starts)
+            starts = list(map(max, starts, reach))
     return starts, ends
 
 
+def _reach_of(plane: Plane, places: Sequence[Place]) -> list[float]:
+    (along, left, up), offset = plane
+    if abs(along) < ALONG * math.hypot(along, left, up):
+        raise UnreadableError("body is cut along its length: not read yet")
+    base, left, up = offset / along, left / along, up / along
+    if abs(left) < SQUARE and abs(up) < SQUARE:
+        return [base] * len(places)
+    return [base - left * y - up * z for y, z in places]
+
+
 def _steep(
-    planes: Sequence[Plane], points: Points, starts: Vector, ends: Vector
+    planes: Sequence[Plane], places: Sequence[Place], starts: list[float], ends: list[float]
 ) -> tuple[bool, bool]:
+    """Whether a plane that slants much in elevation ends the member, at the start and the end."""
     steep = [False, False]
-    for normal, offset in planes:
-        if abs(normal[2]) > STEEP_CUT * abs(normal[0]):
-            reach = (offset - points @ normal[1:]) / normal[0]
-            limit = ends if normal[0] > 0 else starts
-            if np.abs(reach - limit).min() < 1e-6:
-                steep[int(normal[0] > 0)] = True
+    for plane in planes:
+        along, _, up = plane[0]
+        if abs(up) > STEEP_CUT * abs(along):
+            limits = ends if along > 0.0 else starts
+            reach = _reach_of(plane, places)
+            if any(abs(a - b) < TIE for a, b in zip(reach, limits, strict=True)):
+                steep[int(along > 0.0)] = True
     return steep[0], steep[1]
-
-
-def _place(member: _Member, local: Sequence[float]) -> Place3:
-    """A place in the member's axes, in the building."""
-    return _triple(member.base + np.array(local) @ member.frame)
-
-
-def _triple(values: Vector | Sequence[float]) -> Place3:
-    x, y, z = values.tolist() if isinstance(values, np.ndarray) else values
-    return round(x, 9), round(y, 9), round(z, 9)
