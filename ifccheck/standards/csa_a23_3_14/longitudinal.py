@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 from dataclasses import dataclass, fields, replace
-from typing import Any
 
 import numpy as np
 
@@ -18,7 +17,7 @@ from ifccheck.standards.csa_a23_3_14.shear_lines import (
     STIRRUP_TERM_LINES,
     given,
 )
-from ifccheck.standards.csa_a23_3_14.tension_face import utilisation_of, worse_face
+from ifccheck.standards.csa_a23_3_14.tension_face import TensionFace, utilisation_of, worse_face
 
 
 def tension_side_force(
@@ -142,131 +141,95 @@ class LongitudinalDetails(ShearDetails):
     """phi_s fy As of that side, developed [N]"""
 
 
-@dataclass(frozen=True, slots=True)
-class _Side:
-    """One side of the section: the greatest moment that tensions it, its lever arm, its steel."""
-
-    moment: Floats
-    lever_arm: Floats
-    steel: Floats
-
-
 def check(prepared: Prepared, demand: Demand) -> Check:
     """Check the longitudinal steel of both sides at every station and arrangement.
 
     The shear is that of the place itself, not the lesser one of the critical section, while Vs
     and theta are those of the shear check: never less than the clause asks for.
     """
-    details, utilisation = worse_face(prepared, demand, _evaluate_face)
-    unknown = np.isnan(utilisation)
+    details, utilisation = worse_face(prepared, demand, _evaluate)
     return Check(
         demand=details.force,
         resistance=np.where(details.beyond_materials, np.nan, details.steel),
         utilisation=utilisation,
-        outside=outside_of(details, unknown),
+        outside=outside_of(details, np.isnan(utilisation)),
         details=details,
     )
 
 
-def _evaluate_face(
-    prepared: Prepared, demand: Demand, top: Bools
-) -> tuple[LongitudinalDetails, Floats]:
+def _evaluate(face: TensionFace, demand: Demand) -> tuple[LongitudinalDetails, Floats]:
     with np.errstate(divide="ignore", invalid="ignore"):
-        return _both_sides(prepared, demand, evaluate(prepared, demand, top))
+        return _both_sides(face, demand, evaluate(face, demand))
 
 
 def _both_sides(
-    prepared: Prepared, demand: Demand, shear: ShearDetails
+    face: TensionFace, demand: Demand, shear: ShearDetails
 ) -> tuple[LongitudinalDetails, Floats]:
     """The worse of both sides.
 
     Where theta or the stirrups are not known, the force that need not be exceeded stands in;
     the steel that suffices for that suffices, and nothing is said otherwise.
     """
-    legs_unknown = np.isnan(shear.stirrup_area)
+    legs_unknown = np.isnan(face.stirrup_area)
     outside = shear.beyond_strain | shear.beyond_simplified
-    stirrup_term = np.where(legs_unknown, 0.0, shear.stirrup_term)
+    known = replace(shear, stirrup_term=np.where(legs_unknown, 0.0, shear.stirrup_term))
     theta = np.where(outside, np.nan, shear.theta)
-    soffit, top = _sides(prepared, demand)
-    tensioned = _pick(shear.top_in_tension, top, soffit)
-    pressed = _pick(shear.top_in_tension, soffit, top)
+    peaks = demand.peak_sagging, demand.peak_hogging
+    peak, other_peak = (np.where(face.top_in_tension, a, b) for a, b in (peaks[::-1], peaks))
     tension = tension_side_force(
         moment=shear.moment,
         shear=shear.own_shear,
-        stirrup_term=stirrup_term,
+        stirrup_term=known.stirrup_term,
         shear_depth=shear.shear_depth,
         theta=theta,
-        greatest_moment=tensioned.moment,
-        lever_arm=tensioned.lever_arm,
+        greatest_moment=peak,
+        lever_arm=face.lever_arm,
     )
-    compression = compression_side_force(
-        moment=shear.moment,
-        shear=shear.own_shear,
-        stirrup_term=stirrup_term,
-        shear_depth=shear.shear_depth,
-        theta=theta,
-        greatest_moment=pressed.moment,
-        lever_arm=pressed.lever_arm,
-    )
-    compression = np.where(_in_fan(prepared, demand, shear, theta), 0.0, compression)
-    inside = prepared.inside
-    first = utilisation_of(tension, tensioned.steel, inside)
-    second = utilisation_of(compression, pressed.steel, inside)
+    compression = _compression(face, demand, known, theta, other_peak)
+    first = utilisation_of(tension, face.steel, face.inside)
+    second = utilisation_of(compression, face.other_steel, face.inside)
     governs = second > first
-    side = _pick(governs, pressed, tensioned)
+    steel = np.where(governs, face.other_steel, face.steel)
     utilisation = np.where(governs, second, first)
-    doubtful = (outside | legs_unknown) & (utilisation > 1.0) & (side.steel > 0.0)
+    doubtful = (outside | legs_unknown) & (utilisation > 1.0) & (steel > 0.0)
+    missing = doubtful | (face.beyond_materials & (utilisation > 0.0))
     details = LongitudinalDetails(
-        **_named(replace(shear, stirrup_term=stirrup_term)),
-        greatest_moment=side.moment,
-        lever_arm=side.lever_arm,
+        **{f.name: getattr(known, f.name) for f in fields(known)},
+        greatest_moment=np.where(governs, other_peak, peak),
+        lever_arm=np.where(governs, face.other_lever_arm, face.lever_arm),
         tension_side=~governs & ~outside,
         compression_side=governs & ~outside,
-        by_limit=np.broadcast_to(outside, governs.shape),
+        by_limit=outside,
         force=np.where(governs, compression, tension),
-        steel=side.steel,
+        steel=steel,
     )
-    missing = doubtful | (shear.beyond_materials & (utilisation > 0.0))
     return details, np.where(missing, np.nan, utilisation)
 
 
-def _named(details: ShearDetails) -> dict[str, Any]:
-    return {f.name: getattr(details, f.name) for f in fields(details)}
+def _compression(
+    face: TensionFace, demand: Demand, shear: ShearDetails, theta: Floats, peak: Floats
+) -> Floats:
+    """Tension on the compression side; none where no moment ever tensions that side, nor where
+    the inclined crack that would tension it starts beyond the face of a support.
 
-
-def _sides(prepared: Prepared, demand: Demand) -> tuple[_Side, _Side]:
-    around = prepared.surroundings
-    depths = (
-        (around.peak_lever_sagging, prepared.sagging.shear_depth),
-        (around.peak_lever_hogging, prepared.hogging.shear_depth),
-    )
-    soffit, top = (np.where(np.isfinite(peak), peak, own) for peak, own in depths)
-    return (
-        _Side(demand.peak_sagging, soffit, prepared.sagging.tension_force),
-        _Side(demand.peak_hogging, top, prepared.hogging.tension_force),
-    )
-
-
-def _pick(condition: Bools, one: _Side, other: _Side) -> _Side:
-    return _Side(
-        np.where(condition, one.moment, other.moment),
-        np.where(condition, one.lever_arm, other.lever_arm),
-        np.where(condition, one.steel, other.steel),
-    )
-
-
-def _in_fan(prepared: Prepared, demand: Demand, shear: ShearDetails, theta: Floats) -> Bools:
-    """Whether the inclined crack that would tension the compression side starts beyond a face.
-
-    It starts dv cot(theta) away on the side to which the moment lessens; within that length of
-    the face of a support the compression fans out from the support and no such crack forms.
+    That crack starts dv cot(theta) away on the side to which the moment lessens; within that
+    length of a face the compression fans out from the support and no such crack forms.
     """
-    sense = np.where(shear.top_in_tension, -1.0, 1.0)
-    around = prepared.surroundings
-    to_face = np.where(sense * demand.shear > 0.0, around.start_distance, around.end_distance)
-    reach = shear.shear_depth / np.tan(np.radians(theta))
-    fan: Bools = to_face < reach
-    return fan
+    if not peak.any():
+        return np.zeros(shear.own_shear.shape)
+    force = compression_side_force(
+        moment=shear.moment,
+        shear=shear.own_shear,
+        stirrup_term=shear.stirrup_term,
+        shear_depth=shear.shear_depth,
+        theta=theta,
+        greatest_moment=peak,
+        lever_arm=face.other_lever_arm,
+    )
+    sense = np.where(face.top_in_tension, -1.0, 1.0)
+    to_face = np.where(sense * demand.shear > 0.0, face.start_distance, face.end_distance)
+    in_fan = to_face * np.tan(np.radians(theta)) < shear.shear_depth
+    return np.where(in_fan, 0.0, force)
 
 
 FORCE_LINES = (

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, fields, replace
 
 import numpy as np
 
@@ -12,7 +12,6 @@ from ifccheck.standards.csa_a23_3_14.materials import GREATEST_YIELD
 from ifccheck.standards.csa_a23_3_14.sections import Prepared
 from ifccheck.standards.csa_a23_3_14.shear_lines import given
 from ifccheck.standards.csa_a23_3_14.stirrups import GREATEST_SPACING, minimum_stirrup_area
-from ifccheck.standards.csa_a23_3_14.tension_face import broadcast
 
 DEEP = 750.0
 """Thickness beyond which a beam needs minimum stirrups [mm] (11.2.8.1)"""
@@ -53,7 +52,14 @@ def check(prepared: Prepared, demand: Demand) -> Check:
         resistance=np.broadcast_to(details.provided, shape),
         utilisation=np.broadcast_to(utilisation, shape),
         outside=(),
-        details=broadcast(details, shape),
+        details=_broadcast(details, shape),
+    )
+
+
+def _broadcast(details: MinimumStirrupDetails, shape: tuple[int, ...]) -> MinimumStirrupDetails:
+    return replace(
+        details,
+        **{f.name: np.broadcast_to(getattr(details, f.name), shape) for f in fields(details)},
     )
 
 

@@ -169,11 +169,10 @@ def longitudinal_strain(
     ----------
     CSA A23.3-14, 11.3.6.4
     """
-    force = np.maximum(moment, shear * shear_depth) / shear_depth + shear
-    stiffness = 2.0 * STEEL_MODULUS * tension_area
-    return np.where(force > 0.0, force / np.where(stiffness > 0.0, stiffness, np.nan), 0.0) + (
-        np.where((force > 0.0) & ~(stiffness > 0.0), np.inf, 0.0)
-    )
+    force = np.maximum(moment / shear_depth, shear) + shear
+    with np.errstate(divide="ignore", invalid="ignore"):
+        strain = force / (2.0 * STEEL_MODULUS * tension_area)
+    return np.where(force > 0.0, strain, 0.0)
 
 
 def general_beta(*, strain: Floats, crack_spacing: Floats) -> Floats:

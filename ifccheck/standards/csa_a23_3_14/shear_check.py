@@ -3,20 +3,22 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from typing import Any
 
 import numpy as np
 
-from ifccheck.mechanics.arrays import Bools, Demand, Floats
+from ifccheck.mechanics.arrays import Bools, Demand, Floats, Ints
 from ifccheck.standards.contract import Check, LimitState, Outside
 from ifccheck.standards.csa_a23_3_14 import shear as formulas
-from ifccheck.standards.csa_a23_3_14.materials import GREATEST_YIELD
 from ifccheck.standards.csa_a23_3_14.sections import Prepared
 from ifccheck.standards.csa_a23_3_14.shear_lines import SHEAR_LINES
 from ifccheck.standards.csa_a23_3_14.stirrups import greatest_stirrup_spacing, minimum_stirrup_area
-from ifccheck.standards.csa_a23_3_14.tension_face import utilisation_of, worse_face
-
-ROUNDING = 1e-9
-"""What a limit may be exceeded by for rounding in the conversion of units"""
+from ifccheck.standards.csa_a23_3_14.tension_face import (
+    TensionFace,
+    put,
+    utilisation_of,
+    worse_face,
+)
 
 
 @dataclass(frozen=True, slots=True)
@@ -71,28 +73,27 @@ class ShearDetails:
     beyond_materials: Bools
 
 
-def evaluate(prepared: Prepared, demand: Demand, top: Bools) -> ShearDetails:
-    """Work out the shear resistance with the soffit, or where ``top`` the top, in tension.
+def evaluate(face: TensionFace, demand: Demand) -> ShearDetails:
+    """Work out the shear resistance with one face in tension.
 
     The range of each method is kept: outside it the resistance is nan. A face that holds no
     tension steel at all resists no shear, for clause 11.3 presumes that steel.
     """
+    acting = _Acting(np.abs(demand.critical_shear), np.abs(demand.shear), np.abs(demand.moment))
     with np.errstate(divide="ignore", invalid="ignore", over="ignore"):
-        return _evaluate(prepared, demand, top)
+        strain = _strain(face, acting)
+        stirrups = _stirrups(face, acting.shear)
+        cracks = _cracks(face, strain, stirrups)
+        return _details(face, acting, strain, stirrups, cracks, _terms(face, stirrups, cracks))
 
 
 @dataclass(frozen=True, slots=True)
-class _Section:
-    """The section, and what acts on it."""
+class _Acting:
+    """What acts, without its sense."""
 
     shear: Floats
     own_shear: Floats
     moment: Floats
-    top: Bools
-    depth: Floats
-    width: Floats
-    strength: Floats
-    lam: Floats
 
 
 @dataclass(frozen=True, slots=True)
@@ -107,11 +108,17 @@ class _Strain:
 
 @dataclass(frozen=True, slots=True)
 class _Stirrups:
-    area: Floats
     minimum: Floats
     greatest_spacing: Floats
     present: Bools
     effective: Bools
+
+
+@dataclass(frozen=True, slots=True)
+class _Terms:
+    concrete: Floats
+    stirrups: Floats
+    greatest: Floats
 
 
 @dataclass(frozen=True, slots=True)
@@ -122,155 +129,145 @@ class _Cracks:
     theta: Floats
 
 
-def _evaluate(prepared: Prepared, demand: Demand, top: Bools) -> ShearDetails:
-    section = _section(prepared, demand, top)
-    strain = _strain(prepared, section)
-    stirrups = _stirrups(prepared, section)
-    cracks = _cracks(prepared, section, strain, stirrups)
-    concrete = formulas.concrete_resistance(
-        beta=cracks.beta,
-        concrete_strength=section.strength,
-        density_factor=section.lam,
-        web_width=section.width,
-        shear_depth=section.depth,
-    )
-    steel = formulas.stirrup_resistance(
-        stirrup_area=stirrups.area,
-        stirrup_yield=prepared.stirrup_yield,
-        stirrup_spacing=prepared.stirrup_spacing,
-        shear_depth=section.depth,
-        theta=cracks.theta,
-    )
-    steel = np.where(stirrups.effective, steel, np.where(np.isnan(stirrups.area), np.nan, 0.0))
-    greatest = formulas.greatest_resistance(
-        concrete_strength=section.strength, web_width=section.width, shear_depth=section.depth
-    )
-    return _details(prepared, section, strain, stirrups, cracks, (concrete, steel, greatest))
-
-
-def _section(prepared: Prepared, demand: Demand, top: Bools) -> _Section:
-    soffit_face, top_face = prepared.sagging, prepared.hogging
-    return _Section(
-        shear=np.abs(demand.critical_shear),
-        own_shear=np.abs(demand.shear),
-        moment=np.abs(demand.moment),
-        top=top,
-        depth=np.where(top, top_face.shear_depth, soffit_face.shear_depth),
-        width=np.where(top, top_face.web_width, soffit_face.web_width),
-        strength=prepared.concrete_strength,
-        lam=prepared.density_factor,
-    )
-
-
-def _strain(prepared: Prepared, section: _Section) -> _Strain:
+def _strain(face: TensionFace, acting: _Acting) -> _Strain:
     """eps_x at the place, or where it is less, at the critical section nearer to midspan.
 
     The latter is open to a place nearer to a support than its critical section, where the shear
     at that section is used too; the moment there is bounded from the place's own.
     """
-    around = prepared.surroundings
-    own_area = np.where(section.top, prepared.hogging.tension_area, prepared.sagging.tension_area)
-    critical_area = np.where(
-        section.top, around.critical_area_hogging, around.critical_area_sagging
-    )
-    own_moment = np.maximum(section.moment, section.shear * section.depth)
-    critical_moment = np.maximum(
-        section.moment + section.own_shear * around.critical_distance,
-        section.shear * section.depth,
-    )
+    moment = np.maximum(acting.moment, acting.shear * face.shear_depth)
     own = formulas.longitudinal_strain(
-        moment=own_moment,
-        shear=section.shear,
-        shear_depth=section.depth,
-        tension_area=own_area,
+        moment=moment,
+        shear=acting.shear,
+        shear_depth=face.shear_depth,
+        tension_area=face.tension_area,
     )
-    critical = formulas.longitudinal_strain(
-        moment=critical_moment,
-        shear=section.shear,
-        shear_depth=section.depth,
-        tension_area=critical_area,
+    at_place = _Strain(
+        present=face.tension_area_full > 0.0,
+        area=face.tension_area,
+        distance=np.zeros(face.shear_depth.shape),
+        moment=moment,
+        strain=own,
     )
-    nearer = (section.shear < section.own_shear) & (around.critical_distance > 0.0)
-    there = nearer & (critical < own)
-    full = np.where(
-        section.top, prepared.hogging.tension_area_full, prepared.sagging.tension_area_full
+    nearer = np.nonzero((acting.shear < acting.own_shear) & (face.critical_distance > 0.0))
+    if nearer[0].size == 0:
+        return at_place
+    return _strain_at_critical(face.take(nearer[-1]), acting, at_place, nearer)
+
+
+def _strain_at_critical(
+    face: TensionFace, acting: _Acting, own: _Strain, nearer: tuple[Ints, ...]
+) -> _Strain:
+    """The strain with that at the critical section put in where it is less."""
+    shear, own_shear = acting.shear[nearer], acting.own_shear[nearer]
+    moment = np.maximum(
+        acting.moment[nearer] + own_shear * face.critical_distance, shear * face.shear_depth
     )
+    strain = formulas.longitudinal_strain(
+        moment=moment, shear=shear, shear_depth=face.shear_depth, tension_area=face.critical_area
+    )
+    less = strain < own.strain[nearer]
+    places = tuple(index[less] for index in nearer)
+    shape = own.strain.shape
+    present = np.broadcast_to(own.present, shape)
     return _Strain(
-        present=(full > 0.0) | (nearer & (critical_area > 0.0)),
-        area=np.where(there, critical_area, own_area),
-        distance=np.where(there, around.critical_distance, 0.0),
-        moment=np.where(there, critical_moment, own_moment),
-        strain=np.where(there, critical, own),
+        present=put(present, nearer, present[nearer] | (face.critical_area > 0.0)),
+        area=put(np.broadcast_to(own.area, shape), places, face.critical_area[less]),
+        distance=put(np.broadcast_to(own.distance, shape), places, face.critical_distance[less]),
+        moment=put(own.moment, places, moment[less]),
+        strain=put(own.strain, places, strain[less]),
     )
 
 
-def _stirrups(prepared: Prepared, section: _Section) -> _Stirrups:
+def _stirrups(face: TensionFace, shear: Floats) -> _Stirrups:
     minimum = minimum_stirrup_area(
-        concrete_strength=section.strength,
-        web_width=section.width,
-        spacing=prepared.stirrup_spacing,
-        stirrup_yield=prepared.stirrup_yield,
+        concrete_strength=face.concrete_strength,
+        web_width=face.web_width,
+        spacing=face.stirrup_spacing,
+        stirrup_yield=face.stirrup_yield,
     )
     greatest = greatest_stirrup_spacing(
-        shear=section.shear,
-        concrete_strength=section.strength,
-        density_factor=section.lam,
-        web_width=section.width,
-        shear_depth=section.depth,
+        shear=shear,
+        concrete_strength=face.concrete_strength,
+        density_factor=face.density_factor,
+        web_width=face.web_width,
+        shear_depth=face.shear_depth,
     )
-    area = np.broadcast_to(prepared.stirrup_area, section.shear.shape)
-    present = area > 0.0
-    effective = present & (area >= minimum) & (prepared.stirrup_spacing <= greatest)
-    return _Stirrups(area, minimum, greatest, present, effective)
+    present = face.stirrup_area > 0.0
+    enough = present & (face.stirrup_area >= minimum)
+    return _Stirrups(minimum, greatest, present, enough & (face.stirrup_spacing <= greatest))
 
 
-def _cracks(prepared: Prepared, section: _Section, strain: _Strain, stirrups: _Stirrups) -> _Cracks:
+def _cracks(face: TensionFace, strain: _Strain, stirrups: _Stirrups) -> _Cracks:
     aggregate = formulas.effective_aggregate_size(
-        concrete_strength=section.strength, aggregate_size=prepared.aggregate_size
+        concrete_strength=face.concrete_strength, aggregate_size=face.aggregate_size
     )
-    spacing = formulas.equivalent_crack_spacing(shear_depth=section.depth, aggregate_size=aggregate)
-    simplified_beta = formulas.simplified_beta(
-        stirrups=stirrups.effective,
-        shear_depth=section.depth,
-        crack_spacing=spacing,
-        aggregate_size=aggregate,
+    plain_spacing = formulas.equivalent_crack_spacing(
+        shear_depth=face.shear_depth, aggregate_size=aggregate
     )
-    spacing = np.where(stirrups.effective, formulas.STIRRUP_CRACK_SPACING, spacing)
-    general_beta = formulas.general_beta(strain=strain.strain, crack_spacing=spacing)
-    general_theta = formulas.general_theta(strain=strain.strain)
-    simplified = prepared.surroundings.simplified
+    spacing = np.where(stirrups.effective, formulas.STIRRUP_CRACK_SPACING, plain_spacing)
+    if face.simplified.all():
+        beta = formulas.simplified_beta(
+            stirrups=stirrups.effective,
+            shear_depth=face.shear_depth,
+            crack_spacing=plain_spacing,
+            aggregate_size=aggregate,
+        )
+        theta = np.full(face.shear_depth.shape, formulas.SIMPLIFIED_THETA)
+        return _Cracks(aggregate, spacing, beta, theta)
     return _Cracks(
         aggregate=aggregate,
         spacing=spacing,
-        beta=np.where(simplified, simplified_beta, general_beta),
-        theta=np.where(simplified, formulas.SIMPLIFIED_THETA, general_theta),
+        beta=formulas.general_beta(strain=strain.strain, crack_spacing=spacing),
+        theta=formulas.general_theta(strain=strain.strain),
     )
 
 
+def _terms(face: TensionFace, stirrups: _Stirrups, cracks: _Cracks) -> _Terms:
+    concrete = formulas.concrete_resistance(
+        beta=cracks.beta,
+        concrete_strength=face.concrete_strength,
+        density_factor=face.density_factor,
+        web_width=face.web_width,
+        shear_depth=face.shear_depth,
+    )
+    steel = formulas.stirrup_resistance(
+        stirrup_area=face.stirrup_area,
+        stirrup_yield=face.stirrup_yield,
+        stirrup_spacing=face.stirrup_spacing,
+        shear_depth=face.shear_depth,
+        theta=cracks.theta,
+    )
+    idle = np.where(np.isnan(face.stirrup_area), np.nan, 0.0)
+    greatest = formulas.greatest_resistance(
+        concrete_strength=face.concrete_strength,
+        web_width=face.web_width,
+        shear_depth=face.shear_depth,
+    )
+    return _Terms(concrete, np.where(stirrups.effective, steel, idle), greatest)
+
+
 def _details(
-    prepared: Prepared,
-    section: _Section,
+    face: TensionFace,
+    acting: _Acting,
     strain: _Strain,
     stirrups: _Stirrups,
     cracks: _Cracks,
-    terms: tuple[Floats, Floats, Floats],
+    terms: _Terms,
 ) -> ShearDetails:
-    concrete, steel, greatest = terms
-    simplified = prepared.surroundings.simplified
-    beyond_strain = strain.present & ~simplified & (strain.strain > formulas.GREATEST_STRAIN)
-    beyond_simplified = simplified & _beyond_simplified(prepared)
-    beyond_materials = _beyond_materials(prepared)
-    outside = beyond_strain | beyond_simplified | beyond_materials
-    resistance = np.where(strain.present, np.minimum(concrete + steel, greatest), 0.0)
+    beyond_strain = strain.present & ~face.simplified & (strain.strain > formulas.GREATEST_STRAIN)
+    outside = beyond_strain | face.beyond_simplified | face.beyond_materials
+    resistance = np.minimum(terms.concrete + terms.stirrups, terms.greatest)
+    resistance = np.where(strain.present, resistance, 0.0)
     return ShearDetails(
-        shear=section.shear,
-        own_shear=section.own_shear,
-        moment=section.moment,
-        top_in_tension=section.top,
-        shear_depth=section.depth,
-        web_width=section.width,
-        concrete_strength=section.strength,
-        density_factor=section.lam,
+        shear=acting.shear,
+        own_shear=acting.own_shear,
+        moment=acting.moment,
+        top_in_tension=face.top_in_tension,
+        shear_depth=face.shear_depth,
+        web_width=face.web_width,
+        concrete_strength=face.concrete_strength,
+        density_factor=face.density_factor,
         aggregate_size=cracks.aggregate,
         tension_area=strain.area,
         distance=strain.distance,
@@ -279,26 +276,26 @@ def _details(
         crack_spacing=cracks.spacing,
         beta=cracks.beta,
         theta=cracks.theta,
-        stirrup_area=stirrups.area,
-        stirrup_spacing=prepared.stirrup_spacing,
-        stirrup_yield=prepared.stirrup_yield,
+        stirrup_area=face.stirrup_area,
+        stirrup_spacing=face.stirrup_spacing,
+        stirrup_yield=face.stirrup_yield,
         minimum_stirrup_area=stirrups.minimum,
         greatest_spacing=stirrups.greatest_spacing,
-        concrete_term=concrete,
-        stirrup_term=steel,
-        greatest=greatest,
+        concrete_term=terms.concrete,
+        stirrup_term=terms.stirrups,
+        greatest=terms.greatest,
         steel_present=strain.present.astype(np.float64),
         resistance=np.where(outside, np.nan, resistance),
-        **_methods(prepared, stirrups, cracks),
+        **_methods(face, stirrups, cracks),
         beyond_strain=beyond_strain,
-        beyond_simplified=beyond_simplified,
-        beyond_materials=beyond_materials,
+        beyond_simplified=face.beyond_simplified,
+        beyond_materials=face.beyond_materials,
     )
 
 
-def _methods(prepared: Prepared, stirrups: _Stirrups, cracks: _Cracks) -> dict[str, Bools]:
+def _methods(face: TensionFace, stirrups: _Stirrups, cracks: _Cracks) -> dict[str, Bools]:
     """Which method and which of its forms holds, by the names of the details."""
-    simplified = prepared.surroundings.simplified
+    simplified = face.simplified
     effective, plain = stirrups.effective, ~stirrups.effective
     by_depth = cracks.aggregate >= formulas.SIMPLIFIED_AGGREGATE
     return {
@@ -315,22 +312,7 @@ def _methods(prepared: Prepared, stirrups: _Stirrups, cracks: _Cracks) -> dict[s
     }
 
 
-def _beyond_simplified(prepared: Prepared) -> Bools:
-    beyond: Bools = (
-        prepared.longitudinal_yield > formulas.SIMPLIFIED_GREATEST_YIELD * (1.0 + ROUNDING)
-    ) | (prepared.concrete_strength > formulas.SIMPLIFIED_GREATEST_STRENGTH * (1.0 + ROUNDING))
-    return beyond
-
-
-def _beyond_materials(prepared: Prepared) -> Bools:
-    strong_stirrups = (prepared.stirrup_area > 0.0) & (
-        prepared.stirrup_yield > GREATEST_YIELD * (1.0 + ROUNDING)
-    )
-    beyond: Bools = prepared.beyond_concrete_strength | prepared.beyond_yield | strong_stirrups
-    return beyond
-
-
-def outside_of(details: ShearDetails, checked: Bools) -> tuple[Outside, ...]:
+def outside_of(details: Any, checked: Bools) -> tuple[Outside, ...]:
     """Where shear lies outside the validity of a clause, among the places checked."""
     found = (
         ("11.3.6.4", "longitudinal strain above 0.003", details.beyond_strain),
@@ -348,20 +330,20 @@ def outside_of(details: ShearDetails, checked: Bools) -> tuple[Outside, ...]:
     return tuple(Outside(clause, text, mask & checked) for clause, text, mask in found)
 
 
-def _evaluate_face(prepared: Prepared, demand: Demand, top: Bools) -> tuple[ShearDetails, Floats]:
-    details = evaluate(prepared, demand, top)
-    return details, utilisation_of(details.shear, details.resistance, prepared.inside)
+def _evaluate(face: TensionFace, demand: Demand) -> tuple[ShearDetails, Floats]:
+    details = evaluate(face, demand)
+    return details, utilisation_of(details.shear, details.resistance, face.inside)
 
 
 def check(prepared: Prepared, demand: Demand) -> Check:
     """Check shear by 11.3.6.3 or 11.3.6.4 at every station and arrangement."""
-    details, utilisation = worse_face(prepared, demand, _evaluate_face)
-    checked = (details.shear > 0.0) & prepared.inside
+    details, utilisation = worse_face(prepared, demand, _evaluate)
+    shear = np.abs(demand.critical_shear)
     return Check(
-        demand=details.shear,
+        demand=shear,
         resistance=details.resistance,
         utilisation=utilisation,
-        outside=outside_of(details, checked),
+        outside=outside_of(details, (shear > 0.0) & prepared.inside),
         details=details,
     )
 
