@@ -2,8 +2,7 @@
 
 from __future__ import annotations
 
-import re
-from collections.abc import Iterator
+from collections.abc import Callable, Iterator
 from dataclasses import dataclass, field
 
 from ifccheck.beam import Beam, Box, Given, OutOfScope, Reason, Remark, Run
@@ -26,7 +25,7 @@ from ifccheck.ifc.scope import Clues, judge
 from ifccheck.ifc.storeys import Storeys
 from ifccheck.ifc.straight import Straight, straighten
 from ifccheck.ifc.strength import Strengths, concrete_strength
-from ifccheck.ifc.vocabulary import LIGHTWEIGHT, PRESTRESSED
+from ifccheck.ifc.vocabulary import speaks_of_lightweight, speaks_of_prestress
 
 GENERAL = "Pset_ConcreteElementGeneral"
 GEOMETRY, MATERIALS = "geometry", "materials"
@@ -174,7 +173,7 @@ class BeamReader:
             doubts.reason("prestressed: the model holds tendons in it")
         elif get(entity, "PredefinedType") == "HOLLOWCORE":
             doubts.reason("prestressed: a hollow-core unit")
-        elif named := _first(PRESTRESSED, _all_names(clues)):
+        elif named := _first(speaks_of_prestress, _all_names(clues)):
             doubts.reason(f'prestressed: named so in "{named}"')
         if openings := relations.openings.get(step_id):
             doubts.reason(f"{_count(len(openings), 'opening')} not read yet")
@@ -226,7 +225,7 @@ class BeamReader:
                     found += _stated_density(value, source, doubts)
         if found:
             return min(found, key=lambda given: given.value)
-        if named := _first(LIGHTWEIGHT, _all_names(clues)):
+        if named := _first(speaks_of_lightweight, _all_names(clues)):
             doubts.reason(f'lightweight concrete of unstated density: "{named}"', blocking=False)
         return None
 
@@ -281,8 +280,8 @@ def _all_names(clues: Clues) -> tuple[str, ...]:
     return (*materials, *clues.definition.set_names, *clues.names)
 
 
-def _first(pattern: re.Pattern[str], names: tuple[str, ...]) -> str:
-    return next((name for name in names if pattern.search(name)), "")
+def _first(speaks: Callable[[str], bool], names: tuple[str, ...]) -> str:
+    return next((name for name in names if speaks(name)), "")
 
 
 def _count(number: int, noun: str) -> str:

@@ -94,7 +94,7 @@ class Prism:
 
 def body_items(context: Context, product: Entity) -> list[Placed]:
     """Return the items of a product's body, mapped ones resolved, each with its matrix."""
-    shape = product[REPRESENTATION]
+    shape = product.get_argument(REPRESENTATION)
     representation = body_representation(shape) if shape is not None else None
     if representation is None:
         return []
@@ -106,10 +106,10 @@ def body_representation(shape: Entity) -> Entity | None:
     """Return the representation that holds the body: the one named so, else the first solid."""
     solid: Entity | None = None
     for representation in several(shape, "Representations"):
-        name = representation[1]
+        name = representation.get_argument(1)
         if name == "Body":
             return representation
-        if solid is None and not name and representation[2] in SOLID_TYPES:
+        if solid is None and not name and representation.get_argument(2) in SOLID_TYPES:
             solid = representation
     return solid
 
@@ -149,13 +149,13 @@ def read_prism(context: Context, profiles: Profiles, placed: Placed) -> Prism:
 def extrusion(context: Context, profiles: Profiles, placed: Placed) -> Prism:
     """Return an IfcExtrudedAreaSolid in the building; the taper of a tapered one is not in it."""
     item, matrix, mapped = placed
-    profile = profiles.of(item[0])
-    position = context.placements.axes(item[1])
-    depth = item[3] * context.units.length
+    profile = profiles.of(item.get_argument(0))
+    position = context.placements.axes(item.get_argument(1))
+    depth = item.get_argument(3) * context.units.length
     if not (math.isfinite(depth) and depth > 0.0):
         raise UnreadableError(f"body is extruded by {depth:g} mm")
     whole = matrix if position is IDENTITY else matrix @ position
-    along = combined(whole[:3, :3].T.tolist(), scaled(unit(item[2][0]), depth))
+    along = combined(whole[:3, :3].T.tolist(), scaled(unit(item.get_argument(2)[0]), depth))
     return _unscaled(profile, whole, along) if mapped else Prism(profile, whole, along)
 
 

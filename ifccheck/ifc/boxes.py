@@ -114,11 +114,11 @@ class Boxes:
 
 
 def _point(entity: Entity) -> list[tuple[float, ...]]:
-    return [entity[0]] if len(entity[0]) == 3 else []
+    return [entity.get_argument(0)] if len(entity.get_argument(0)) == 3 else []
 
 
 def _point_list(entity: Entity) -> list[tuple[float, ...]]:
-    return list(entity[0])
+    return list(entity.get_argument(0))
 
 
 def _round(entity: Entity) -> list[tuple[float, ...]]:

@@ -1,8 +1,8 @@
 """Reading attributes of IFC entities quickly.
 
-``entity.Name`` costs about ten times ``entity[2]``; in a model of fifty thousand bars that
-difference is longer than opening the file. The position of an attribute is looked up once per
-class and kept.
+``entity.Name`` costs about ten times ``entity.get_argument(2)``; in a model of fifty thousand
+bars that difference is longer than opening the file. The position of an attribute is looked up
+once per class and kept.
 """
 
 from __future__ import annotations
@@ -33,7 +33,7 @@ def get(entity: Entity, name: str) -> Any:
     except KeyError:
         found = entity.get_argument_index(name)
         position = _positions[key] = None if found == NO_SUCH_ATTRIBUTE else found
-    return None if position is None else entity[position]
+    return None if position is None else entity.get_argument(position)
 
 
 def text(entity: Entity, name: str) -> str:
@@ -44,7 +44,7 @@ def text(entity: Entity, name: str) -> str:
 
 def text_at(entity: Entity, position: int) -> str:
     """Return the text attribute at a position, empty where it is not given."""
-    value = entity[position]
+    value = entity.get_argument(position)
     return value.strip() if isinstance(value, str) else ""
 
 

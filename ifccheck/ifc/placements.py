@@ -40,7 +40,7 @@ class Placements:
 
     def matrix(self, product: Entity) -> Matrix:
         """Return the placement of a product in the building [mm]."""
-        placement = product[OBJECT_PLACEMENT]
+        placement = product.get_argument(OBJECT_PLACEMENT)
         return IDENTITY if placement is None else self.placement(placement)
 
     def placement(self, placement: Entity) -> Matrix:
@@ -64,7 +64,7 @@ class Placements:
     def _placed(self, placement: Entity, parent: Matrix) -> Matrix:
         kind = placement.is_a()
         if kind == "IfcLocalPlacement":
-            own = self.axes(placement[1])
+            own = self.axes(placement.get_argument(1))
             return parent if own is IDENTITY else parent @ own
         if kind == "IfcGridPlacement":
             return self._on_grid(placement, parent)
@@ -83,16 +83,16 @@ class Placements:
         return self._axes[step_id]
 
     def _read_axes(self, position: Entity) -> Matrix:
-        kind, location = position.is_a(), position[0]
+        kind, location = position.is_a(), position.get_argument(0)
         if location is None or location.is_a() != "IfcCartesianPoint":
             raise UnreadableError(f"{label(position)} does not lie at a Cartesian point")
         if kind == "IfcAxis2Placement3D":
-            axis, reference = position[1], position[2]
+            axis, reference = position.get_argument(1), position.get_argument(2)
         elif kind == "IfcAxis2Placement2D":
-            axis, reference = None, position[1]
+            axis, reference = None, position.get_argument(1)
         else:
             raise UnreadableError(f"{label(position)} is no axis placement that is read")
-        origin = location[0]
+        origin = location.get_argument(0)
         if axis is None and reference is None and not any(origin):
             return IDENTITY
         matrix = self._rotation(axis, reference).copy()
@@ -146,7 +146,7 @@ class Placements:
             along = first[1] - first[0]
             return rigid(None, (along[0], along[1], 0.0))
         if reference.is_a("IfcDirection"):
-            return rigid(None, reference[0])
+            return rigid(None, reference.get_argument(0))
         raise UnreadableError(f"{label(placement)} takes its direction from a second intersection")
 
     def _grid(self, axis: Entity) -> Entity:
@@ -166,7 +166,7 @@ class Placements:
         curve = get(axis, "AxisCurve")
         if not curve.is_a("IfcPolyline") or len(curve[0]) != 2:
             raise UnreadableError(f"grid axis {label(axis)} is no straight polyline")
-        ends = [point[0][:2] for point in curve[0]]
+        ends = [point.get_argument(0)[:2] for point in curve[0]]
         line = np.array(ends if get(axis, "SameSense") is not False else ends[::-1], dtype=float)
         return line * self.scale
 

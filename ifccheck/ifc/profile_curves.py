@@ -237,7 +237,10 @@ def _trim(trim: Sequence[Entity], placements: Placements) -> tuple[Place | None,
     parameter: float | None = None
     for entity in trim:
         if entity.is_a("IfcCartesianPoint"):
-            point = (entity[0][0] * placements.scale, entity[0][1] * placements.scale)
+            point = (
+                entity[0][0] * placements.scale,
+                entity[0][1] * placements.scale,
+            )
         else:
             parameter = float(entity[0])
     return point, parameter

@@ -107,7 +107,7 @@ class Properties:
     def _property(self, item: Entity, prefix: str) -> Iterator[tuple[str, PropertyValue]]:
         kind, name = item.is_a(), prefix + text_at(item, 0)
         if kind == "IfcPropertySingleValue":
-            yield name, self._value(item, item[2], item[3])
+            yield name, self._value(item, item.get_argument(2), item.get_argument(3))
         elif kind == "IfcComplexProperty":
             for inner in several(item, "HasProperties"):
                 yield from self._property(inner, name + ".")
@@ -125,7 +125,7 @@ class Properties:
             return PropertyValue(None, "", None, item.id())
         measure = wrapped.is_a()
         kind, factor = self._scale(measure, unit)
-        return PropertyValue(wrapped[0], measure, factor, item.id(), kind)
+        return PropertyValue(wrapped.get_argument(0), measure, factor, item.id(), kind)
 
     def _list(
         self, item: Entity, wrapped: tuple[Entity, ...], unit: Entity | None
@@ -133,7 +133,7 @@ class Properties:
         if len(wrapped) < 2:
             return self._value(item, wrapped[0] if wrapped else None, unit)
         first = self._value(item, wrapped[0], unit)
-        values = tuple(entity[0] for entity in wrapped)
+        values = tuple(entity.get_argument(0) for entity in wrapped)
         return PropertyValue(values, first.measure, first.factor, item.id(), first.kind)
 
     def _quantity(self, quantity: Entity) -> PropertyValue:
@@ -141,7 +141,7 @@ class Properties:
         if not quantity.is_a("IfcPhysicalSimpleQuantity"):
             return PropertyValue(None, measure, None, quantity.id())
         kind, factor = self._scale(measure, get(quantity, "Unit"))
-        return PropertyValue(quantity[3], measure, factor, quantity.id(), kind)
+        return PropertyValue(quantity.get_argument(3), measure, factor, quantity.id(), kind)
 
     def _scale(self, measure: str, unit: Entity | None) -> tuple[UnitKind | None, float | None]:
         kind = MEASURE_KINDS.get(measure)

@@ -118,7 +118,7 @@ def read_relations(file: Any) -> Relations:
 
 
 def _read_parts(found: _Gathering, relation: Entity) -> None:
-    relating, related = relation[4], relation[5]
+    relating, related = relation.get_argument(4), relation.get_argument(5)
     if relating is None:
         return
     whole = relating.id()
@@ -137,39 +137,39 @@ def _read_container(found: _Gathering, relation: Entity) -> None:
 
 
 def _read_type(found: _Gathering, relation: Entity) -> None:
-    relating = relation[5]
+    relating = relation.get_argument(5)
     if relating is not None:
         type_id = relating.id()
-        for element in relation[4] or ():
+        for element in relation.get_argument(4) or ():
             found.types.setdefault(element.id(), type_id)
 
 
 def _read_material(found: _Gathering, relation: Entity) -> None:
-    relating = relation[5]
+    relating = relation.get_argument(5)
     if relating is not None:
         material = relating.id()
-        for element in relation[4] or ():
+        for element in relation.get_argument(4) or ():
             found.materials.setdefault(element.id(), material)
 
 
 def _read_sets(found: _Gathering, relation: Entity) -> None:
-    relating = relation[5]
+    relating = relation.get_argument(5)
     if relating is None:
         return
     # IFC4 lets one relation carry a set of definitions, wrapped in a defined type (id 0)
     sets = [relating.id()] if relating.id() else [entity.id() for entity in relating[0]]
-    for element in relation[4] or ():
+    for element in relation.get_argument(4) or ():
         found.sets[element.id()].extend(sets)
 
 
 def _read_opening(found: _Gathering, relation: Entity) -> None:
-    element, opening = relation[4], relation[5]
+    element, opening = relation.get_argument(4), relation.get_argument(5)
     if element is not None and opening is not None:
         found.openings[element.id()].append(opening.id())
 
 
 def _read_projection(found: _Gathering, relation: Entity) -> None:
-    element, feature = relation[4], relation[5]
+    element, feature = relation.get_argument(4), relation.get_argument(5)
     if element is not None and feature is not None:
         found.projections[element.id()].append(feature.id())
 

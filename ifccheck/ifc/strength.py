@@ -9,6 +9,7 @@ from __future__ import annotations
 import re
 from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
+from functools import lru_cache
 from typing import TYPE_CHECKING
 
 from ifccheck.beam import Given, Remark
@@ -63,6 +64,7 @@ class Reading:
         return self.low * (1.0 - AGREE) <= value <= self.high * (1.0 + AGREE)
 
 
+@lru_cache(maxsize=4096)
 def read_strength_text(text: str, source: str, bare: bool = False) -> Reading | None:
     """Return the cylinder strength that a text names, None where it names none.
 

@@ -151,6 +151,18 @@ _GRADES = [
 
 
 @lru_cache(maxsize=8192)
+def speaks_of_prestress(name: str) -> bool:
+    """Tell whether a name says that a member is prestressed."""
+    return PRESTRESSED.search(name) is not None
+
+
+@lru_cache(maxsize=8192)
+def speaks_of_lightweight(name: str) -> bool:
+    """Tell whether a name says that concrete is lightweight."""
+    return LIGHTWEIGHT.search(name) is not None
+
+
+@lru_cache(maxsize=8192)
 def families_named(text: str) -> frozenset[str]:
     """Return the materials and uses that the name of a member or a type speaks of."""
     families, rest = _split(text)
