@@ -8,7 +8,7 @@ from __future__ import annotations
 import math
 import re
 from collections.abc import Callable, Sequence
-from dataclasses import dataclass, fields
+from dataclasses import dataclass
 from typing import Any
 
 import numpy as np
@@ -105,12 +105,9 @@ def values_at(lines: Sequence[CalculationLine], details: Any, row: int) -> LineV
 
 
 def _field(details: Any, name: str, row: int) -> float:
-    return float(np.broadcast_to(getattr(details, name), details_shape(details))[row])
-
-
-def details_shape(details: Any) -> tuple[int, ...]:
-    """Common shape of a details dataclass."""
-    return np.broadcast_shapes(*(np.shape(getattr(details, f.name)) for f in fields(details)))
+    """A value that does not differ from row to row may stand there once."""
+    values = np.asarray(getattr(details, name)).reshape(-1)
+    return float(values[row if values.size > 1 else 0])
 
 
 def sheet_lines(found: LineValues) -> tuple[SheetLine, ...]:
