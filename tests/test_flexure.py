@@ -375,6 +375,17 @@ def test_remark_below_the_minimum_unless_the_section_outlasts_its_cracking() -> 
     assert not top.mask.any()
 
 
+@pytest.mark.parametrize(("left", "right", "bt"), [(450, 450, 750), (450, 0, 450), (60, 60, 420)])
+def test_flange_in_tension_counts_over_part_of_its_width(left, right, bt) -> None:
+    """10.5.1.2, recalled: bt up to 2.5 bw with flanges on both sides, 1.5 bw on one; the web
+    alone when sagging."""
+    layers = ((60.0, 1500.0, 25.2), (540.0, 900.0, 19.5))
+    prepared = prepared_of([Given(flanged(300, 600, left, right, 150), layers, 36.0)])
+    per_width = 0.2 * 6.0 / 400.0 * 600.0
+    assert prepared.hogging.minimum_area[0] == pytest.approx(per_width * bt)
+    assert prepared.sagging.minimum_area[0] == pytest.approx(per_width * 300)
+
+
 def test_doubly_reinforced_by_hand() -> None:
     """350 x 600, 5-30M at 520 mm, 2-20M at 60 mm, f'c 30, fy 400 MPa; both layers yield.
 
