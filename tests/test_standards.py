@@ -98,6 +98,8 @@ def test_checks_have_one_shape_and_lines_name_their_fields(state):
         assert array.shape == (2, 2)
     for outside in check.outside:
         assert outside.mask.shape == (2, 2)
+    for field in fields(check.details):
+        assert getattr(check.details, field.name).shape == (2, 2)
     for line in state.lines:
         assert getattr(check.details, line.field).shape == (2, 2)
         assert not line.when or getattr(check.details, line.when).dtype == np.bool_

@@ -139,25 +139,38 @@ def faces_in_tension(prepared: Prepared, demand: Demand) -> tuple[Bools, Bools]:
     return soffit | ~top, top
 
 
-@dataclass(frozen=True, slots=True)
 class DetailsOfBothFaces:
-    """Details on the face that governs, put together for each name when it is asked for."""
+    """Details on the face that governs, put together for each name when it is asked for.
 
-    soffit: Any
-    top: Any
-    """At the places where the top is tried alone"""
-    places: tuple[Ints, ...]
-    """Where the top governs"""
-    taken: Bools
-    """Which of the top's rows those are"""
-    shape: tuple[int, ...]
+    It has the fields of the details that it is made of. A run asks for the details of few places
+    only, and to put all of them together would take longer than the check itself.
+    """
+
+    def __init__(
+        self,
+        soffit: Any,
+        top: Any,
+        places: tuple[Ints, ...],
+        taken: Bools,
+        shape: tuple[int, ...],
+    ) -> None:
+        """``top`` holds the places where the top is tried; it governs at those ``taken``, which
+        are ``places`` of the whole."""
+        self._soffit, self._top, self._places = soffit, top, places
+        self._taken, self._shape = taken, shape
+
+    @property
+    def __dataclass_fields__(self) -> dict[str, Any]:
+        return {f.name: f for f in fields(self._soffit)}
 
     def __getattr__(self, name: str) -> Any:
-        whole = np.broadcast_to(getattr(self.soffit, name), self.shape)
-        if self.taken.size == 0:
+        if name.startswith("_"):
+            raise AttributeError(name)
+        whole = np.broadcast_to(getattr(self._soffit, name), self._shape)
+        if self._taken.size == 0:
             return whole
-        part = np.broadcast_to(getattr(self.top, name), self.taken.shape)
-        return put(whole, self.places, part[self.taken])
+        part = np.broadcast_to(getattr(self._top, name), self._taken.shape)
+        return put(whole, self._places, part[self._taken])
 
 
 def worse_face(
