@@ -105,11 +105,10 @@ def _repeats(entities: Sequence[Entity]) -> Iterator[Remark]:
 def _reinforced(
     context: Context, beams: Sequence[Beam], mapping: Mapping[str, str]
 ) -> Iterator[Beam]:
-    """The beams with what the model says of their reinforcement."""
+    """The beams with the reinforcement that the model holds for those whose body is read."""
     frames = {
         beam.step_id: BeamFrame(beam.axis, beam.runs) for beam in beams if beam.axis is not None
     }
-    found = read_reinforcement(context, frames, mapping)
+    reinforcement = read_reinforcement(context, frames, mapping)
     for beam in beams:
-        reinforcement = found.get(beam.step_id, ())
-        yield replace(beam, reinforcement=reinforcement) if reinforcement else beam
+        yield replace(beam, reinforcement=reinforcement.get(beam.step_id, ()))

@@ -1,75 +1,117 @@
-"""Answers the selections of a brief with the keys of beams."""
+"""Answers a selection of the brief with the keys of beams."""
 
 from __future__ import annotations
 
 import re
-from collections.abc import Callable, Sequence
+from collections.abc import Callable, Iterator, Sequence
 from typing import Any, Protocol
 
 from ifccheck.beam import Beam
 from ifccheck.errors import BriefError
+
+Field = Callable[[Beam], str]
 
 
 class Opened(Protocol):
     """What a selection needs of an opened model."""
 
     @property
-    def file(self) -> Any:
-        """The ifcopenshell file."""
+    def file(self) -> Any: ...  # noqa: D102
+    @property
+    def file_name(self) -> str: ...  # noqa: D102
 
 
 def select(
-    opened: Opened, beams: Sequence[Beam], patterns: Sequence[str] | None, where: str | None
+    opened: Opened,
+    beams: Sequence[Beam],
+    patterns: Sequence[str] | None,
+    where: str | None,
 ) -> tuple[str, ...]:
-    """Keys of the beams that marks or an element query reach, in the order of ``beams``.
+    """Return the keys of the beams that the patterns or the query reach, in model order.
 
-    A mark is an exact GlobalId (or key), else a Tag, else a Name; in it ``*`` stands for
-    anything and case counts. A query is ifcopenshell's, asked of these beams alone.
+    A pattern is tried as a GlobalId, then on Tags, then on Names; ``*`` stands for any text.
+    ``where`` is an element query of ifcopenshell. Raises BriefError where the query cannot be
+    understood or names a class that the model's schema has not.
     """
     if where is not None:
-        return _queried(opened, beams, where)
-    reached = {key for pattern in patterns or () for key in _marked(beams, pattern)}
-    return tuple(beam.key for beam in beams if beam.key in reached)
+        chosen = _answer(opened, beams, where)
+    else:
+        chosen = {key for pattern in patterns or () for key in _matched(beams, pattern)}
+    return tuple(beam.key for beam in beams if beam.key in chosen)
 
 
-def _marked(beams: Sequence[Beam], pattern: str) -> tuple[str, ...]:
-    """Keys by the first kind of mark that the pattern fits."""
-    fits = re.compile(".*".join(map(re.escape, pattern.split("*"))), re.DOTALL).fullmatch
-    kinds: tuple[Callable[[Beam], bool], ...] = (
-        lambda beam: pattern in (beam.guid, beam.key),
-        lambda beam: bool(beam.tag and fits(beam.tag)),
-        lambda beam: bool(beam.name and fits(beam.name)),
+def _matched(beams: Sequence[Beam], pattern: str) -> list[str]:
+    """Keys of the beams that a pattern reaches, by the first field that it matches any in.
+
+    A pattern with ``*`` is no GlobalId: those are random, and "2*" would reach some by chance.
+    """
+    if pattern.strip("*") == "" and pattern:
+        return [beam.key for beam in beams]
+    matches = _matcher(pattern)
+    for field in MARKS if "*" in pattern else (*IDENTIFIERS, *MARKS):
+        found = [beam.key for beam in beams if matches(field(beam))]
+        if found:
+            return found
+    return []
+
+
+IDENTIFIERS: tuple[Field, ...] = (lambda beam: beam.guid, lambda beam: beam.key)
+"""A key is a GlobalId, or one of several beams that share it: ``GlobalId~2``."""
+MARKS: tuple[Field, ...] = (lambda beam: beam.tag, lambda beam: beam.name)
+
+
+def _matcher(pattern: str) -> Callable[[str], bool]:
+    if "*" not in pattern:
+        return lambda text: text == pattern and text != ""
+    expression = re.compile(
+        ".*".join(re.escape(part) for part in pattern.split("*")), flags=re.DOTALL
     )
-    found = (tuple(beam.key for beam in beams if is_marked(beam)) for is_marked in kinds)
-    return next(filter(None, found), ())
+    return lambda text: text != "" and expression.fullmatch(text) is not None
 
 
-def _queried(opened: Opened, beams: Sequence[Beam], where: str) -> tuple[str, ...]:
-    import ifcopenshell.util.selector as selector
+def _answer(opened: Opened, beams: Sequence[Beam], query: str) -> set[str]:
+    """Keys of the beams that an element query finds among the candidates."""
+    from ifcopenshell.util import selector
+    from lark.exceptions import LarkError
 
-    candidates = {opened.file.by_id(beam.step_id) for beam in beams}
-    _require_known_classes(opened, where)
+    place = f'where = "{query}"'
+    if not query.strip():
+        raise BriefError("where is empty: give an element query such as IfcBeam, or beams")
     try:
-        found = selector.filter_elements(opened.file, where, elements=candidates)
-    except Exception as error:  # the query language raises what its parser happens to raise
-        reason = str(error).strip().splitlines()[0] if str(error).strip() else "not understood"
-        raise BriefError(f"where = '{where}': {reason}") from error
-    ids = {entity.id() for entity in found}
-    return tuple(beam.key for beam in beams if beam.step_id in ids)
+        tree = selector.filter_elements_grammar.parse(query)
+    except LarkError as error:
+        at = getattr(error, "column", None)
+        spot = f" at character {at}" if isinstance(at, int) and at > 0 else ""
+        raise BriefError(
+            f"{place} cannot be understood{spot}: it is no element query of ifcopenshell"
+        ) from error
+    _require_known_classes(opened, tree, place)
+    if not beams:
+        return set()  # without candidates ifcopenshell would search the whole model
+    keys = {beam.step_id: beam.key for beam in beams}
+    candidates = {opened.file.by_id(step_id) for step_id in keys}
+    try:
+        found = selector.filter_elements(opened.file, query, elements=candidates)
+    except (LarkError, re.error) as error:
+        detail = str(error.__context__ or error).splitlines()[0]
+        raise BriefError(f"{place} cannot be answered in {opened.file_name}: {detail}") from error
+    return {keys[entity.id()] for entity in found if entity.id() in keys}
 
 
-def _require_known_classes(opened: Opened, where: str) -> None:
-    """Refuse a class that the schema does not have: the query would reach nothing in silence."""
-    schema = ifcopenshell_schema(opened)
-    for name in re.findall(r"(?:^|[,+]\s*)!?(Ifc\w+)", where):
+def _require_known_classes(opened: Opened, tree: Any, place: str) -> None:
+    import ifcopenshell
+
+    schema = ifcopenshell.schema_by_name(opened.file.schema_identifier)
+    for name in _classes(tree):
         try:
             schema.declaration_by_name(name)
         except RuntimeError as error:
-            raise BriefError(f"where = '{where}': {name} is no class of the schema") from error
+            raise BriefError(
+                f"{place} names the class {name}, which {opened.file.schema} does not have"
+            ) from error
 
 
-def ifcopenshell_schema(opened: Opened) -> Any:
-    """The schema of an opened file."""
-    import ifcopenshell
-
-    return ifcopenshell.schema_by_name(opened.file.schema_identifier)
+def _classes(tree: Any) -> Iterator[str]:
+    for branch in tree.iter_subtrees():
+        if branch.data == "ifc_class":
+            yield str(branch.children[0])
