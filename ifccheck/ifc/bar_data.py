@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Iterable, Iterator
 from dataclasses import dataclass
+from typing import Any
 
 from ifccheck.beam import Given
 from ifccheck.ifc.bar_sizes import (
@@ -51,7 +52,20 @@ class _Type:
     area: float | None = None
 
 
+@dataclass(frozen=True, slots=True)
+class Data:
+    """What is settled of a bar."""
+
+    role: str
+    """LIGATURE, MAIN ...; "" where neither the bar nor its type tells."""
+    size: int
+    """Index into ``BarData.sizes``; -1 where nobody tells."""
+    grade: int
+    """Index into ``BarData.grades``."""
+
+
 NO_HINTS, NO_TYPE = _Hints(), _Type()
+NOTHING_SAID = (None, None, None, None)
 
 
 class BarData:
@@ -61,38 +75,53 @@ class BarData:
         self.sizes: list[BarSize] = []
         self.grades: list[Grade] = []
         self._context = context
-        self._size_index: dict[tuple[object, ...], int] = {}
-        self._grade_index: dict[tuple[object, ...], int] = {}
-        self._hints: dict[tuple[int, ...], _Hints] = {}
+        self._settled: dict[tuple[object, ...], Data] = {}
         self._types: dict[int | None, _Type] = {None: NO_TYPE}
         self._materials: dict[int | None, tuple[tuple[tuple[str, str], ...], Given | None]] = {
             None: ((), None)
         }
         self._names: dict[str, str] = {}
 
-    def of(self, product: Entity, step_id: int, swept: float | None) -> tuple[str, int, int]:
-        """Return role, index of size (-1 where nobody tells it) and index of grade."""
+    def of(self, product: Entity, step_id: int, name: str, swept: float | None) -> Data:
+        """Return what is settled of a bar."""
+        argument = product.get_argument
         relations = self._context.relations
         type_id = relations.types.get(step_id)
-        about = self._type(type_id)
-        hints = self._hints_of(step_id)
-        role, diameter, area, grade = "", None, None, ""
+        sets = relations.property_sets(step_id) if type_id else relations.sets.get(step_id)
         if product.is_a() == "IfcReinforcingBar":
-            grade, diameter, area, role = product[8] or "", product[9], product[10], product[12]
-        name = self._named(product[2]) or self._named(product[4]) or self._named(about.name)
-        size_key = (diameter, area, type_id, swept, name, hints.sizes)
-        if size_key not in self._size_index:
-            self._size_index[size_key] = self._settled_size(*size_key)
-        grade_key = (grade, relations.material_of(step_id), hints.grades, about.name, product[4])
-        if grade_key not in self._grade_index:
-            self._grade_index[grade_key] = self._settled_grade(*grade_key)
-        own_role = role if role and role != "NOTDEFINED" else about.role
-        return own_role, self._size_index[size_key], self._grade_index[grade_key]
+            said = (argument(8), argument(9), argument(10), argument(12))
+        else:
+            said = NOTHING_SAID
+        named = self._named(name) if "M" in name or "#" in name else ""
+        material = relations.materials.get(step_id) or relations.materials.get(type_id or 0)
+        told = None if sets is None else tuple(sets)
+        key = (said, argument(4), named, type_id, material, told, swept)
+        data = self._settled.get(key)
+        if data is None:
+            data = self._settled[key] = self._settle(step_id, *key)
+        return data
 
-    def _named(self, name: str | None) -> str:
+    def _settle(
+        self,
+        step_id: int,
+        said: tuple[str | None, float | None, float | None, str | None],
+        object_type: str | None,
+        named: str,
+        type_id: int | None,
+        material: int | None,
+        sets: tuple[int, ...] | None,
+        swept: float | None,
+    ) -> Data:
+        grade, diameter, area, role = said
+        about = self._type(type_id)
+        hints = self._hints_of(step_id, sets or ())
+        name = named or self._named(object_type or "") or self._named(about.name)
+        own_role = role if role and role != "NOTDEFINED" else about.role
+        size = self._size(diameter, area, about, swept, name, hints)
+        return Data(own_role, size, self._grade(grade, material, hints, about.name, object_type))
+
+    def _named(self, name: str) -> str:
         """The bar size in a name."""
-        if not name or ("M" not in name and "#" not in name):
-            return ""
         if name not in self._names:
             self._names[name] = named_size(name)
         return self._names[name]
@@ -108,17 +137,16 @@ class BarData:
             )
         return self._types[type_id]
 
-    def _settled_size(
+    def _size(
         self,
         diameter: float | None,
         area: float | None,
-        type_id: int | None,
+        about: _Type,
         swept: float | None,
         name: str,
-        hints: tuple[SizeSource, ...],
+        hints: _Hints,
     ) -> int:
         length = self._context.units.length
-        about = self._type(type_id)
         sources = [
             SizeSource("nominal diameter", _times(diameter, length)),
             SizeSource("nominal diameter of its type", _times(about.diameter, length)),
@@ -126,13 +154,10 @@ class BarData:
             SizeSource("area", area=self._area(area)),
             SizeSource("area of its type", area=self._area(about.area)),
             SizeSource("name", designation=name),
-            *hints,
+            *hints.sizes,
         ]
         size = settle_size(sources)
-        if size is None:
-            return -1
-        self.sizes.append(size)
-        return len(self.sizes) - 1
+        return -1 if size is None else _index(self.sizes, size)
 
     def _area(self, area: float | None) -> float | None:
         """An area [mm2]: in the model's unit of area, or else in the square of its length unit."""
@@ -143,26 +168,18 @@ class BarData:
         )
         return by_length if is_area_of_bar(by_length) and not is_area_of_bar(declared) else declared
 
-    def _settled_grade(
-        self,
-        grade: str,
-        material: int | None,
-        hints: tuple[tuple[str, str], ...],
-        *names: str | None,
+    def _grade(
+        self, grade: str | None, material: int | None, hints: _Hints, *names: str | None
     ) -> int:
         texts, stated = self._material(material)
         named = [("name", name) for name in names if name and yield_of_grade(name) is not None]
-        self.grades.append(settle_grade([("grade", grade), *hints, *named, *texts], stated))
-        return len(self.grades) - 1
+        sources = [("grade", grade or ""), *hints.grades, *named, *texts]
+        return _index(self.grades, settle_grade(sources, stated))
 
-    def _hints_of(self, step_id: int) -> _Hints:
-        set_ids = self._context.relations.property_sets(step_id)
-        if not set_ids:
+    def _hints_of(self, step_id: int, sets: tuple[int, ...]) -> _Hints:
+        if not any(self._tells(set_id) for set_id in sets):
             return NO_HINTS
-        if set_ids not in self._hints:
-            wanted = any(self._tells(set_id) for set_id in set_ids)
-            self._hints[set_ids] = self._read_hints(step_id) if wanted else NO_HINTS
-        return self._hints[set_ids]
+        return self._read_hints(step_id)
 
     def _tells(self, set_id: int) -> bool:
         """Whether a set has a property that is wanted; cheap, as bars are many."""
@@ -203,6 +220,13 @@ class BarData:
                 yield Given(
                     number, f"material {text(material, 'Name')!r} {set_name}.{YIELD_PROPERTY}"
                 )
+
+
+def _index(known: list[Any], new: object) -> int:
+    """Index of an entry in a list without repeats."""
+    if new not in known:
+        known.append(new)
+    return known.index(new)
 
 
 def _times(value: float | None, factor: float) -> float | None:

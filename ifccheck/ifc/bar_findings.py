@@ -50,16 +50,11 @@ class Findings:
 
 
 def _sentence(bars: Sequence[str], text: str) -> str:
-    return f"{name_bars(bars)}: {text}" if bars else text
+    distinct = list(dict.fromkeys(bars))
+    return f"{name_bars(distinct[:LISTED], len(distinct))}: {text}" if bars else text
 
 
-def name_bars(labels: Iterable[str]) -> str:
-    """Name bars for people: the first few, and how many more."""
-    distinct = list(dict.fromkeys(labels))
-    named = ", ".join(distinct[:LISTED])
-    more = len(distinct) - LISTED
-    return (
-        f"bar {named}"
-        if len(distinct) == 1
-        else (f"bars {named} and {more} more" if more > 0 else f"bars {named}")
-    )
+def name_bars(first: Sequence[str], count: int) -> str:
+    """Name bars for people: the first few, and how many more there are."""
+    more = f" and {count - len(first)} more" if count > len(first) else ""
+    return f"{'bar' if count == 1 else 'bars'} {', '.join(first)}{more}"

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Callable, Iterator, Sequence
+from collections.abc import Callable, Iterable, Iterator, Sequence
 from dataclasses import dataclass
 from typing import Any
 
@@ -119,24 +119,35 @@ def _point(coordinates: Sequence[float], scale: float) -> Point:
 
 
 def _polyline(curve: Entity, units: ModelUnits) -> Path:
-    return Path(tuple(_point(point[0], units.length) for point in curve[0]))
+    return Path(_points((point.get_argument(0) for point in curve[0]), units.length))
+
+
+def _points(coordinates: Iterable[Sequence[float]], scale: float) -> tuple[Point, ...]:
+    """Points of three or of two coordinates [mm]; quick, as bars are many."""
+    return tuple(
+        (c[0] * scale, c[1] * scale, c[2] * scale) if len(c) == 3 else _point(c, scale)
+        for c in coordinates
+    )
 
 
 def _indexed_poly_curve(curve: Entity, units: ModelUnits) -> Path:
-    scale = units.length
-    points = [_point(coordinates, scale) for coordinates in curve[0][0]]
-    segments = curve[1]
+    points = _points(curve.get_argument(0).get_argument(0), units.length)
+    segments = curve.get_argument(1)
     if not segments:
-        return Path(tuple(points))
+        return Path(points)
     order: list[int] = []
     arcs: list[int] = []
     for segment in segments:
-        indices = segment[0]
-        if order and order[-1] != indices[0]:
+        indices = segment.get_argument(0)
+        if not order:
+            order.append(indices[0])
+        elif order[-1] != indices[0]:
             raise UnreadableError(f"{label(curve)} has segments that do not meet")
         if segment.is_a() == "IfcArcIndex":
-            arcs.append(max(len(order) - 1, 0))
-        order.extend(indices[1:] if order else indices)
+            arcs.append(len(order) - 1)
+        order.extend(indices[1:])
+    if not 1 <= min(order) <= max(order) <= len(points):
+        raise UnreadableError(f"{label(curve)} names points that it does not have")
     return Path(tuple(points[index - 1] for index in order), tuple(arcs))
 
 

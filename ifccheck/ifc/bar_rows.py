@@ -6,6 +6,7 @@ from collections.abc import Iterator, Mapping
 from dataclasses import dataclass
 
 import numpy as np
+import numpy.typing as npt
 
 from ifccheck.ifc.bar_hosts import Host
 from ifccheck.ifc.bar_paths import Bools, Floats, Ints, Samples, sample
@@ -20,6 +21,10 @@ INSIDE_SHARE = 0.5
 NOTICED_RUN, NOTICED_LENGTH = 20.0, 300.0
 """A bar that no relation ties is noticed in a beam from this many diameters and this length [mm]
 along it, however far it goes on."""
+
+
+ROTATION_STEPS, PLACE_STEPS = 1e7, 1e4
+"""Steps per unit of a rotation and per mm within which strands are alike."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -61,14 +66,38 @@ class BarPlaces:
         """What people call the bar of a strand."""
         return self.table.bars[int(self.table.bar[strand])].label
 
-    def centre_lines(self, rows: Rows) -> CentreLines:
-        """The centre lines of strands in the axes of their beams."""
+    def motions(self, rows: Rows) -> tuple[Floats, Floats]:
+        """Rotations (R, 3, 3) and translations (R, 3) of strands into the axes of their beams."""
         to_beam = self.frames.rotation[rows.beam]
         rotation = to_beam @ self.table.rotation[rows.strand]
         offset = self.table.translation[rows.strand] - self.frames.origin[rows.beam]
-        translation = np.einsum("rij,rj->ri", to_beam, offset)
+        return rotation, np.einsum("rij,rj->ri", to_beam, offset)
+
+    def centre_lines(self, rows: Rows) -> CentreLines:
+        """The centre lines of strands in the axes of their beams."""
         path, diameter = self.table.path[rows.strand], self.diameter[rows.strand]
-        return place(self.samples, path, rotation, translation, diameter)
+        return place(self.samples, path, *self.motions(rows), diameter)
+
+    def alike(self, rows: Rows) -> tuple[Ints, Floats]:
+        """Find strands that differ by their place along a prismatic beam alone.
+
+        Returns for each row the row that stands for it, and how far beyond that it lies [mm].
+        """
+        rotation, translation = self.motions(rows)
+        prismatic = self.frames.prismatic()[rows.beam]
+        own = np.where(prismatic, -1, np.arange(len(rows.beam)))
+        columns = (
+            rows.beam,
+            own,
+            self.table.path[rows.strand],
+            *(rotation.reshape(-1, 9).T * ROTATION_STEPS),
+            *(translation[:, 1:].T * PLACE_STEPS),
+            self.diameter[rows.strand] * PLACE_STEPS,
+        )
+        key = np.column_stack([np.rint(column).astype(np.int64) for column in columns])
+        first, inverse = _first_of_each(key)
+        stands_for = first[inverse]
+        return stands_for, translation[:, 0] - translation[stands_for, 0]
 
     def world_lines(self, strands: Ints) -> CentreLines:
         """The centre lines of strands in the building."""
@@ -79,6 +108,16 @@ class BarPlaces:
             self.table.translation[strands],
             self.diameter[strands],
         )
+
+
+def _first_of_each(key: npt.NDArray[np.int64]) -> tuple[Ints, Ints]:
+    """First row of each distinct row of integers, and which of them every row is."""
+    mixer = np.random.default_rng(1).integers(1, 2**62, key.shape[1]) * 2 + 1
+    mixed = (key * mixer).sum(axis=1)  # wraps round: a hash that sorts a hundred times as fast
+    _, first, inverse = np.unique(mixed, return_index=True, return_inverse=True)
+    if not (key == key[first[inverse]]).all():
+        _, first, inverse = np.unique(key, axis=0, return_index=True, return_inverse=True)
+    return first, inverse.reshape(-1)
 
 
 def find_rows(places: BarPlaces, hosts: Mapping[int, Host]) -> Found:

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from dataclasses import dataclass
 
 import numpy as np
@@ -34,9 +35,9 @@ class BarShapes:
         self.paths: list[Path] = []
         self._units = units
         self._placements = placements
-        self._solids: dict[int, Strand] = {}
+        self._solids: dict[int, tuple[Strand, ...]] = {}
         self._maps: dict[int, tuple[Strand, ...]] = {}
-        self._targets: dict[int, tuple[Matrix, float]] = {}
+        self._mapped_strands: dict[tuple[int, int], tuple[Strand, ...]] = {}
 
     def of(self, shape: Entity | None) -> tuple[Strand, ...]:
         """Return the bars of a product's shape; its body, or else its axis.
@@ -45,15 +46,10 @@ class BarShapes:
         """
         if shape is None:
             raise UnreadableError("has no shape")
-        body, axis = None, None
-        for representation in shape[2]:
-            identifier = representation[1]
-            if identifier == "Axis":
-                axis = axis or representation
-            elif body is None or identifier == "Body":
-                body = representation
-        if body is None and axis is None:
-            raise UnreadableError("has no shape")
+        representations = shape.get_argument(2)
+        if len(representations) == 1:
+            return self._representation(representations[0], 0)
+        body, axis = _body_and_axis(representations)
         try:
             return self._representation(axis if body is None else body, 0)
         except UnreadableError:
@@ -61,19 +57,36 @@ class BarShapes:
                 raise
             return self._representation(axis, 0)
 
-    def _representation(self, representation: Entity, depth: int) -> tuple[Strand, ...]:
-        items = representation[3]
+    def _representation(self, representation: Entity | None, depth: int) -> tuple[Strand, ...]:
+        items: tuple[Entity, ...] = ()
+        if representation is not None:
+            items = representation.get_argument(3)
         if len(items) == 1:
             return self._item(items[0], depth)
         return tuple(strand for item in items for strand in self._item(item, depth))
 
     def _item(self, item: Entity, depth: int) -> tuple[Strand, ...]:
         if item.is_a() == "IfcMappedItem":
-            return self._mapped(item, depth)
+            return self._mapped(item.get_argument(0), item.get_argument(1), depth)
         step_id = item.id()
         if step_id not in self._solids:
-            self._solids[step_id] = self._solid(item)
-        return (self._solids[step_id],)
+            self._solids[step_id] = (self._solid(item),)
+        return self._solids[step_id]
+
+    def _mapped(self, source: Entity, target: Entity, depth: int) -> tuple[Strand, ...]:
+        key = (source.id(), target.id())
+        if key not in self._mapped_strands:
+            if depth >= DEEPEST_MAPPING:
+                raise UnreadableError("has mapped items nested too deeply")
+            if key[0] not in self._maps:
+                self._maps[key[0]] = self._mapped_source(source, depth)
+            matrix = self._placements.operator(target)
+            self._mapped_strands[key] = _moved(self._maps[key[0]], matrix)
+        return self._mapped_strands[key]
+
+    def _mapped_source(self, source: Entity, depth: int) -> tuple[Strand, ...]:
+        strands = self._representation(source.get_argument(1), depth + 1)
+        return _moved(strands, self._placements.axes(source.get_argument(0)))
 
     def _solid(self, item: Entity) -> Strand:
         if item.is_a("IfcSweptDiskSolid"):
@@ -100,39 +113,31 @@ class BarShapes:
         diameter = 2.0 * get(profile, "Radius") * self._units.length
         return self._strand(Path(ends), self._placements.axes(solid[1]), diameter)
 
-    def _mapped(self, item: Entity, depth: int) -> tuple[Strand, ...]:
-        if depth >= DEEPEST_MAPPING:
-            raise UnreadableError("has mapped items nested too deeply")
-        source, target = item[0], item[1]
-        step_id = source.id()
-        if step_id not in self._maps:
-            self._maps[step_id] = self._mapped_source(source, depth)
-        strands = self._maps[step_id]
-        matrix, scale = self._target(target)
-        if matrix is IDENTITY and scale == 1.0:
-            return strands
-        return tuple(_moved(strand, matrix, scale) for strand in strands)
 
-    def _mapped_source(self, source: Entity, depth: int) -> tuple[Strand, ...]:
-        strands = self._representation(source[1], depth + 1)
-        origin = self._placements.axes(source[0])
-        if origin is IDENTITY:
-            return strands
-        return tuple(_moved(strand, origin, 1.0) for strand in strands)
-
-    def _target(self, target: Entity) -> tuple[Matrix, float]:
-        step_id = target.id()
-        if step_id not in self._targets:
-            matrix = self._placements.operator(target)
-            still = np.array_equal(matrix, IDENTITY)
-            self._targets[step_id] = (IDENTITY if still else matrix, _enlargement(matrix))
-        return self._targets[step_id]
+def _body_and_axis(representations: Sequence[Entity]) -> tuple[Entity | None, Entity | None]:
+    body, axis = None, None
+    for representation in representations:
+        identifier = representation[1]
+        if identifier == "Axis":
+            axis = axis or representation
+        elif body is None or identifier == "Body":
+            body = representation
+    return body, axis
 
 
-def _moved(strand: Strand, matrix: Matrix, scale: float) -> Strand:
-    diameter = None if strand.diameter is None else strand.diameter * scale
-    placed = matrix if strand.matrix is IDENTITY else matrix @ strand.matrix
-    return Strand(strand.path, placed, diameter)
+def _moved(strands: tuple[Strand, ...], matrix: Matrix) -> tuple[Strand, ...]:
+    """Strands moved by a matrix, which may enlarge them."""
+    if np.array_equal(matrix, IDENTITY):
+        return strands
+    scale = _enlargement(matrix)
+    return tuple(
+        Strand(
+            strand.path,
+            matrix if strand.matrix is IDENTITY else matrix @ strand.matrix,
+            None if strand.diameter is None else strand.diameter * scale,
+        )
+        for strand in strands
+    )
 
 
 def _enlargement(matrix: Matrix) -> float:

@@ -4,12 +4,13 @@ from __future__ import annotations
 
 from collections.abc import Iterable, Mapping, Sequence
 from dataclasses import dataclass
+from typing import NamedTuple
 
 import numpy as np
 
 from ifccheck.ifc.bar_data import BarData
 from ifccheck.ifc.bar_paths import Floats, Ints, Path
-from ifccheck.ifc.bar_shapes import BarShapes
+from ifccheck.ifc.bar_shapes import BarShapes, Strand
 from ifccheck.ifc.bar_sizes import BarSize, Grade
 from ifccheck.ifc.context import Context
 from ifccheck.ifc.entity import Entity, UnreadableError
@@ -18,8 +19,7 @@ from ifccheck.ifc.placements import IDENTITY, Matrix
 NO_OFFSET = (0.0, 0.0, 0.0)
 
 
-@dataclass(frozen=True, slots=True)
-class Bar:
+class Bar(NamedTuple):
     """One product that is a bar, or several equal bars."""
 
     step_id: int
@@ -88,15 +88,16 @@ class _Gathering:
 
     def add(self, product: Entity) -> None:
         """Add one product; raises UnreadableError."""
-        strands = self.shapes.of(product[6])
-        outer, offset = self._placement(product[5])
-        step_id = product.id()
-        swept = min((s.diameter for s in strands if s.diameter is not None), default=None)
-        role, size, grade = self.data.of(product, step_id, swept)
-        if size < 0 or not strands:
+        argument = product.get_argument
+        strands = self.shapes.of(argument(6))
+        outer, offset = self._placement(argument(5))
+        step_id, name = product.id(), argument(2) or argument(7) or ""
+        swept = strands[0].diameter if len(strands) == 1 else _thinnest(strands)
+        data = self.data.of(product, step_id, name, swept)
+        if data.size < 0:
             raise UnreadableError("is of a diameter that nobody states")
         row = len(self.bars)
-        self.bars.append(Bar(step_id, str(product[2] or product[7] or ""), role, size, grade))
+        self.bars.append(Bar(step_id, name, data.role, data.size, data.grade))
         self.offsets.append(offset)
         for strand in strands:
             self.rows.append((row, strand.path, outer, self.inner.index(strand.matrix)))
@@ -108,7 +109,7 @@ class _Gathering:
         moved = _only_moved(placement)
         if moved is None:
             return self.outer.index(self._context.placements.placement(placement)), NO_OFFSET
-        parent = placement[0]
+        parent = placement.get_argument(0)
         if parent is None:
             return self._whole_place, moved
         step_id = parent.id()
@@ -118,17 +119,26 @@ class _Gathering:
         return self._parents[step_id], moved
 
 
+def _thinnest(strands: Sequence[Strand]) -> float | None:
+    if not strands:
+        raise UnreadableError("has no shape")
+    return min((s.diameter for s in strands if s.diameter is not None), default=None)
+
+
 def _only_moved(placement: Entity) -> Sequence[float] | None:
     """The move of a local placement that does not turn; None for any other placement."""
     if placement.is_a() != "IfcLocalPlacement":
         return None
-    axes = placement[1]
-    if axes.is_a() != "IfcAxis2Placement3D" or axes[1] is not None or axes[2] is not None:
+    axes = placement.get_argument(1)
+    if axes.is_a() != "IfcAxis2Placement3D":
         return None
-    location = axes[0]
+    argument = axes.get_argument
+    if argument(1) is not None or argument(2) is not None:
+        return None
+    location = argument(0)
     if location.is_a() != "IfcCartesianPoint":
         return None
-    moved: Sequence[float] = location[0]
+    moved: Sequence[float] = location.get_argument(0)
     return moved if len(moved) == 3 else None
 
 

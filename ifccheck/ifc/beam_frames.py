@@ -37,6 +37,13 @@ class BeamFrames:
         """Row of each beam by its STEP id."""
         return {step_id: row for row, step_id in enumerate(self.ids)}
 
+    def prismatic(self) -> Bools:
+        """Whether each beam has one outline from end to end."""
+        single = np.diff(self.first_run) == 1
+        first = self.first_run[:-1]
+        same: Bools = (self.bounds[first] == self.end_bounds[first]).all(axis=1)
+        return np.asarray(single & same)
+
     def bounds_at(self, beam: Ints, x: Floats) -> Floats:
         """The box round the outline of beams at places along them (N, 4)."""
         keys = np.repeat(np.arange(len(self.ids)), np.diff(self.first_run)) * FAR + self.run_start

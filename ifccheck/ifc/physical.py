@@ -3,12 +3,12 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Iterator, Mapping, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 
 from ifccheck.beam import Anchor, Bars, Given, Stirrups
-from ifccheck.ifc.bar_findings import Findings, name_bars
+from ifccheck.ifc.bar_findings import LISTED, Findings, name_bars
 from ifccheck.ifc.bar_paths import Bools, Floats, Ints
 from ifccheck.ifc.bar_pieces import CentreLines, Pieces, count_by_row, cut_into_pieces
 from ifccheck.ifc.bar_rows import BarPlaces, Rows
@@ -38,6 +38,9 @@ SKEWED = 0.966
 """Cosine of the angle (15 degrees) within which a bar may be meant to run along the beam."""
 SLOPING = 10.0
 """A bar that rises by more than this [mm] is remarked on."""
+END_TOLERANCE = 5.0
+"""A stirrup may lie beyond the end of its beam by this [mm]."""
+OUTSIDE = "lies outside the concrete of the beam"
 MAIN_ROLES, TIE_ROLES = frozenset({"MAIN", "EDGE"}), frozenset({"LIGATURE", "RING"})
 
 
@@ -65,6 +68,11 @@ class Measured:
         """What people call the bar of a row."""
         return self.places.table.bars[int(self.bar[row])].label
 
+    def names(self, rows: Sequence[int]) -> str:
+        """What people call the bars of rows."""
+        bars = list(dict.fromkeys(self.bar[rows].tolist()))
+        return name_bars([self.places.table.bars[bar].label for bar in bars[:LISTED]], len(bars))
+
     def grade(self, row: int) -> Given | None:
         """Yield strength of the bar of a row."""
         table = self.places.table
@@ -85,35 +93,69 @@ def reduce_bars(places: BarPlaces, rows: Rows, findings: Findings) -> Physical:
     """Reduce strands to longitudinal bars and stirrups; what is left out goes to the findings."""
     if not len(rows.strand):
         return Physical({}, {})
+    stands_for, shift = places.alike(rows)
+    shapes = np.unique(stands_for)
+    square = np.zeros(len(rows.strand), dtype=bool)
+    square[shapes] = lies_square(places.centre_lines(rows.take(shapes)))
+    square = square[stands_for]
+    bars = _along(_measured(places, rows.take(~square), findings))
+    stirrups = _across(places, rows.take(square), stands_for[square], shift[square], rows, findings)
+    return Physical(bars, stirrups)
+
+
+def _measured(places: BarPlaces, rows: Rows, findings: Findings) -> Measured:
     lines = places.centre_lines(rows)
-    model = Measured(
-        places, rows, lines, cut_into_pieces(lines), findings, places.table.bar[rows.strand]
-    )
+    bar = places.table.bar[rows.strand]
+    return Measured(places, rows, lines, cut_into_pieces(lines), findings, bar)
+
+
+def _along(model: Measured) -> dict[int, tuple[Bars, ...]]:
+    """Bars that do not lie square to their beams."""
+    if not model.lines.count:
+        return {}
     runs = find_runs(model.lines, model.pieces)
-    is_main = np.zeros(lines.count, dtype=bool)
+    is_main = np.zeros(model.lines.count, dtype=bool)
     is_main[runs.row] = True
-    square = lies_square(lines) & ~is_main
-    ties = _find_ties(model, square)
-    counted = ties.legs[:, 1] > 0
-    used = is_main.copy()
-    used[ties.row[counted]] = True
-    _judge_others(model, is_main, square)
-    _judge_roles(model, is_main, square)
-    _judge_fit(model, used)
-    _judge_data(model, used)
-    model.remark(ties.row[~counted].tolist(), "no leg crosses the height, not counted in shear")
-    bars = _longitudinal(model, runs)
-    return Physical(bars, _stirrups(model, ties, counted))
+    _judge_others(model, is_main)
+    _judge_roles(model, is_main, TIE_ROLES, "a stirrup by its role, but runs along the beam")
+    model.reason(np.flatnonzero(_outside(model) & is_main).tolist(), OUTSIDE)
+    _judge_data(model, is_main)
+    return _longitudinal(model, runs)
 
 
-def _find_ties(model: Measured, square: Bools) -> Ties:
+def _across(
+    places: BarPlaces, tied: Rows, stands_for: Ints, shift: Floats, rows: Rows, findings: Findings
+) -> dict[int, tuple[Stirrups, ...]]:
+    """Bars that lie square to their beams; of those alike only one is measured."""
+    if not len(tied.strand):
+        return {}
+    shapes, shape = np.unique(stands_for, return_inverse=True)
+    model = _measured(places, rows.take(shapes), findings)
+    of_shapes = _find_ties(model)
+    outside = _outside(model, anywhere=True)[shape]
+    ties = replace(of_shapes.take(shape), row=np.arange(len(shape)))
+    ties = replace(ties, x=ties.x + shift)
+    model = replace(model, rows=tied, bar=places.table.bar[tied.strand])
+    length = places.frames.length[tied.beam]
+    beyond = (ties.x < -END_TOLERANCE) | (ties.x > length + END_TOLERANCE)
+    counted = (ties.legs[:, 1] > 0) & ~beyond
+    model.remark(np.flatnonzero(beyond).tolist(), "lies beyond the end of the beam, not counted")
+    flat = ~beyond & ~counted
+    model.remark(np.flatnonzero(flat).tolist(), "no leg crosses the height, not counted in shear")
+    _judge_roles(model, counted, MAIN_ROLES, "a main bar by its role, but lies square to the beam")
+    model.reason(np.flatnonzero(outside & counted).tolist(), OUTSIDE)
+    _judge_data(model, counted)
+    return _stirrups(model, ties.take(counted))
+
+
+def _find_ties(model: Measured) -> Ties:
     middle = (model.lines.lowest()[:, 0] + model.lines.highest()[:, 0]) / 2.0
     bounds = model.places.frames.bounds_at(model.rows.beam, middle)
     height = bounds[:, 3] - bounds[:, 2]
-    return find_ties(model.lines, model.pieces, square, bounds[:, 2], height)
+    return find_ties(model.lines, model.pieces, bounds[:, 2], height)
 
 
-def _judge_others(model: Measured, is_main: Bools, square: Bools) -> None:
+def _judge_others(model: Measured, is_main: Bools) -> None:
     """Tell of bars, and parts of bars, that are neither along nor square to the beam."""
     pieces, rows = model.pieces, model.lines.count
     thick = model.lines.diameter[pieces.row]
@@ -122,7 +164,7 @@ def _judge_others(model: Measured, is_main: Bools, square: Bools) -> None:
     inclined = long & (slope < ALONG) & (slope > np.sqrt(1.0 - ALONG**2))
     bent_up = count_by_row(pieces.row, inclined & is_main[pieces.row], rows) > 0
     model.remark(np.flatnonzero(bent_up).tolist(), "inclined parts are not counted")
-    other = ~is_main & ~square
+    other = ~is_main
     lengths = np.bincount(pieces.row, pieces.length, rows)
     short = other & (lengths <= LEAST_RUN * model.lines.diameter)
     skewed = long & (slope >= SKEWED) & (pieces.length > LEAST_RUN * thick)
@@ -136,22 +178,15 @@ def _judge_others(model: Measured, is_main: Bools, square: Bools) -> None:
     model.remark(np.flatnonzero(left).tolist(), "inclined, not counted")
 
 
-def _judge_roles(model: Measured, is_main: Bools, square: Bools) -> None:
-    roles = [bar.role for bar in model.places.table.bars]
-    as_tie = np.array([role in TIE_ROLES for role in roles], dtype=bool)[model.bar]
-    as_main = np.array([role in MAIN_ROLES for role in roles], dtype=bool)[model.bar]
-    model.remark(
-        np.flatnonzero(is_main & as_tie).tolist(),
-        "a stirrup by its role, but runs along the beam: taken as a longitudinal bar",
-    )
-    model.remark(
-        np.flatnonzero(square & as_main).tolist(),
-        "a main bar by its role, but lies square to the beam: taken as a stirrup or tie",
-    )
+def _judge_roles(model: Measured, mask: Bools, roles: frozenset[str], text: str) -> None:
+    """Shape decides over role; where they contradict each other it is told."""
+    contradicted = [bar.role in roles for bar in model.places.table.bars]
+    contrary = np.array(contradicted, dtype=bool)[model.bar] & mask
+    model.remark(np.flatnonzero(contrary).tolist(), f"{text}: taken by its shape")
 
 
-def _judge_fit(model: Measured, used: Bools) -> None:
-    """Steel that lies outside its section cannot be right."""
+def _outside(model: Measured, anywhere: bool = False) -> Bools:
+    """Whether each bar leaves its section between the beam's ends, or ``anywhere``."""
     lines, beam = model.lines, model.rows.beam[model.lines.row]
     x = lines.points[:, 0]
     bounds = model.places.frames.bounds_at(beam, x)
@@ -159,9 +194,8 @@ def _judge_fit(model: Measured, used: Bools) -> None:
     y, z = lines.points[:, 1], lines.points[:, 2]
     outside = (y - reach < bounds[:, 0]) | (y + reach > bounds[:, 1])
     outside |= (z - reach < bounds[:, 2]) | (z + reach > bounds[:, 3])
-    outside &= (x >= 0.0) & (x <= model.places.frames.length[beam]) & used[lines.row]
-    rows = np.unique(lines.row[outside]).tolist()
-    model.reason(rows, "lies outside the concrete of the beam")
+    outside &= anywhere | ((x >= 0.0) & (x <= model.places.frames.length[beam]))
+    return count_by_row(lines.row, outside, lines.count) > 0
 
 
 def _judge_data(model: Measured, used: Bools) -> None:
@@ -222,27 +256,18 @@ def _bars(model: Measured, runs: Runs, height: Floats, members: Ints) -> Bars:
         start_anchor=Anchor.HOOK if runs.start_hook[first] else Anchor.STRAIGHT,
         end_anchor=Anchor.HOOK if runs.end_hook[first] else Anchor.STRAIGHT,
         designation=size.designation,
-        origin=name_bars(model.label(one) for one in runs.row[members].tolist()),
+        origin=model.names(runs.row[members].tolist()),
     )
 
 
-def _stirrups(model: Measured, ties: Ties, counted: Bools) -> dict[int, tuple[Stirrups, ...]]:
-    legged = Ties(
-        ties.row[counted],
-        ties.x[counted],
-        ties.low[counted],
-        ties.high[counted],
-        ties.legs[counted],
-        ties.closed[counted],
-    )
+def _stirrups(model: Measured, legged: Ties) -> dict[int, tuple[Stirrups, ...]]:
     table, bar = model.places.table, model.bar[legged.row]
     areas = np.array([size.area for size in table.sizes], dtype=float)
     sizes = np.array([one.size for one in table.bars], dtype=np.intp)[bar]
     grades = np.array([one.grade for one in table.bars], dtype=np.intp)[bar]
     beam = model.rows.beam[legged.row]
-    found, twice = gather_places(
-        legged, beam, model.lines.diameter[legged.row], areas[sizes], grades
-    )
+    thick = model.places.diameter[model.rows.strand[legged.row]]
+    found, twice = gather_places(legged, beam, thick, areas[sizes], grades)
     model.remark(legged.row[twice].tolist(), "modelled twice, counted once")
     return {key: tuple(_beam_stirrups(model, key, places)) for key, places in found.items()}
 
@@ -274,12 +299,14 @@ def _zone_stirrups(model: Measured, beam: int, zone: Zone) -> Stirrups:
         top=max(place.top for place in zone.places),
         half_width=max(place.half_width for place in zone.places),
         designation=model.places.table.sizes[bar.size].designation,
-        origin=name_bars(model.label(row) for place in zone.places for row in place.rows.tolist()),
+        origin=model.names([row for place in zone.places for row in place.rows.tolist()]),
     )
 
 
 def _stirrup_yield(model: Measured, beam: int, zone: Zone) -> Given | None:
     """The lowest yield strength of a zone's stirrups."""
+    if zone.least.grade >= 0:
+        return model.grade(int(zone.least.rows[0]))
     grades = [model.grade(row) for place in zone.places for row in place.rows.tolist()]
     known = [grade for grade in grades if grade is not None]
     if known and len(known) < len(grades):

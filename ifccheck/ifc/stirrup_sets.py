@@ -5,6 +5,7 @@ from __future__ import annotations
 import math
 from collections.abc import Iterator, Sequence
 from dataclasses import dataclass, replace
+from typing import NamedTuple
 
 import numpy as np
 
@@ -47,6 +48,17 @@ class Ties:
     """Legs that cross each of ``LEVELS`` (T, 3)."""
     closed: Bools
 
+    def take(self, kept: Ints | Bools) -> Ties:
+        """Some of the ties; rows may repeat."""
+        return Ties(
+            self.row[kept],
+            self.x[kept],
+            self.low[kept],
+            self.high[kept],
+            self.legs[kept],
+            self.closed[kept],
+        )
+
 
 def lies_square(lines: CentreLines) -> Bools:
     """Whether each bar lies in a plane square to the beam's axis (R)."""
@@ -56,10 +68,8 @@ def lies_square(lines: CentreLines) -> Bools:
     return np.asarray((extent[:, 0] <= allowed) & (across > extent[:, 0]))
 
 
-def find_ties(
-    lines: CentreLines, pieces: Pieces, square: Bools, soffit: Floats, height: Floats
-) -> Ties:
-    """Count the legs of the bars that lie square; section's soffit and height at each bar (R)."""
+def find_ties(lines: CentreLines, pieces: Pieces, soffit: Floats, height: Floats) -> Ties:
+    """Count the legs of bars that lie square; soffit and height of the section at each (R)."""
     closed = is_closed(lines, pieces)
     anchored = closed[pieces.row] | ((pieces.neighbour(-1) >= 0) & (pieces.neighbour(1) >= 0))
     upright = pieces.straight & (np.abs(pieces.direction[:, 2]) >= UPRIGHT) & anchored
@@ -70,9 +80,8 @@ def find_ties(
         crossing = (pieces.start[:, 2] < level) != (pieces.end[:, 2] < level)
         counted = crossing & upright if part == 0.5 else crossing
         legs[:, column] = count_by_row(pieces.row, counted, lines.count)
-    row = np.flatnonzero(square)
     middle = (low[:, 0] + high[:, 0]) / 2.0
-    return Ties(row, middle[row], low[row, 1:], high[row, 1:], legs[row], closed[row])
+    return Ties(np.arange(lines.count), middle, low[:, 1:], high[:, 1:], legs, closed)
 
 
 def is_closed(lines: CentreLines, pieces: Pieces) -> Bools:
@@ -109,8 +118,7 @@ def _winding(lines: CentreLines) -> Floats:
     return np.asarray(np.bincount(lines.row, weights=step, minlength=lines.count))
 
 
-@dataclass(frozen=True, slots=True)
-class Place:
+class Place(NamedTuple):
     """All the stirrups at one place along a beam."""
 
     x: float
@@ -250,10 +258,10 @@ def _zone(places: Sequence[Place], spacing: float) -> Zone:
 
 def same_steel(one: Place, other: Place) -> bool:
     """Whether two places hold the same legs of the same steel."""
-    areas = sorted((one.area, other.area))
     return (
         one.legs == other.legs
-        and areas[1] <= SAME_STEEL * areas[0]
+        and one.area <= SAME_STEEL * other.area
+        and other.area <= SAME_STEEL * one.area
         and one.grade == other.grade
         and one.closed == other.closed
     )
