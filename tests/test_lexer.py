@@ -157,7 +157,7 @@ REFUSED = {
     "much too great": (step_file(person(10**40)), "numbers run from 1"),
     "no number": (step_file(b"#=IFCPERSON();"), "cannot be read"),
     "no equals sign": (step_file(b"#5;"), "cannot be read"),
-    "no statement": (step_file(b"FOO BAR;"), '"FOO BAR" among its instances'),
+    "no statement": (step_file(b"FOO BAR;"), "'FOO BAR' among its instances"),
     "scope": (step_file(b"&SCOPE " + ONE + b"ENDSCOPE " + TWO), "&SCOPE"),
     "anchor": (HEADER + b"ANCHOR;\n<a>=#1;\nENDSEC;\nDATA;\nENDSEC;\n" + END, "section ANCHOR"),
     "reference": (HEADER + b"REFERENCE;\n#5=<b#x>;\nENDSEC;\n" + END, "section REFERENCE"),

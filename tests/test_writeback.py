@@ -543,8 +543,16 @@ def test_sets_of_others_with_our_names_stay(two_beams: TwoBeams, tmp_path: Path)
     ).encode()
     opened = open_model(saved(tmp_path, source))
     assert opened.source == source
-    assert ["#201" in remark.text for remark in opened.remarks] == [True]
+    (remark,) = opened.remarks
+    assert remark.kind == "doubt"
+    assert f"1 sets named {RESULT} (the first is #201)" in remark.text
     assert rate(tmp_path, rate(tmp_path, source)) == rate(tmp_path, source)
+
+
+def test_marks_in_a_comment_of_the_source_stay(two_beams: TwoBeams, tmp_path: Path) -> None:
+    source = two_beams().replace("DATA;", "DATA;\n/* Results of ifccheck begin? */", 1)
+    rated = rate(tmp_path, source)
+    assert open_model(saved(tmp_path, rated)).source == source.encode()
 
 
 def test_set_names_in_texts_are_no_results(two_beams: TwoBeams, tmp_path: Path) -> None:

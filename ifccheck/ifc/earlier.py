@@ -32,15 +32,15 @@ def may_hold_results(data: bytes) -> bool:
     return _RESULT_NAME.search(data) is not None
 
 
-def result_instances(file: Any) -> tuple[set[int], list[str]]:
+def result_instances(file: Any) -> tuple[set[int], dict[str, list[int]]]:
     """Find every instance that earlier results brought, by number.
 
-    Also names the sets that bear a name of ours and were not derived from their beam: they are
-    left alone.
+    Also returns, by name, the sets that bear a name of ours and whose GlobalId their beam did not
+    give them: they are left alone.
     """
     guid_counts: Counter[str] = Counter()
     ours: dict[int, Any] = {}
-    foreign: list[str] = []
+    foreign: dict[str, list[int]] = {}
     for name, candidate in _named_sets(file):
         relations = _relations(file, candidate)
         if not guid_counts:
@@ -49,7 +49,7 @@ def result_instances(file: Any) -> tuple[set[int], list[str]]:
             ours[candidate.id()] = candidate
             ours.update((relation.id(), relation) for relation in relations)
         else:
-            foreign.append(f"#{candidate.id()} {name}")
+            foreign.setdefault(name, []).append(candidate.id())
     _require_unused(file, ours)
     return _with_unused_parts(file, ours), foreign
 

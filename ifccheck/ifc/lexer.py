@@ -93,7 +93,7 @@ def scan(data: bytes) -> Scan:
     starts, stops = _statements(array, first=len(BYTE_ORDER_MARK) if _has_mark(data) else 0)
     is_instance = array[starts] == _HASH
     words = _Words(plain, starts[~is_instance], stops[~is_instance])
-    schemas, sections = _read_sections(words, data)
+    schemas, sections = _read_sections(words)
     starts, stops = starts[is_instance], stops[is_instance]
     _require_inside(starts, sections, plain)
     ids = _instance_ids(array, starts)
@@ -216,16 +216,20 @@ def _instance_ids(array: Bytes, starts: Offsets) -> Offsets:
         at = at + is_digit
     has_equals = array[_skip_blanks(array, at)] == _EQUALS
     for bad in np.flatnonzero((at == first) | ~has_equals | (ids == 0) | (ids > LARGEST_ID))[:1]:
+        instance = shown(array[starts[bad] :][:40].tobytes())
         raise StepError(
-            f"has an instance that cannot be read at byte {starts[bad]}: "
-            f"{_snippet(array, starts[bad])} (numbers run from 1 to {LARGEST_ID}); {EXPORT_AGAIN}"
+            f"has an instance that cannot be read at byte {starts[bad]}: {instance} "
+            f"(numbers run from 1 to {LARGEST_ID}); {EXPORT_AGAIN}"
         )
     return ids
 
 
-def _snippet(array: Bytes, start: int) -> str:
-    text = array[start : start + 40].tobytes().decode("ascii", "replace")
-    return "".join(character if character.isprintable() else " " for character in text)
+def shown(text: bytes) -> str:
+    """Return the beginning of a statement for a message: one line, printable."""
+    printable = (
+        character if character.isprintable() else " " for character in text[:60].decode("latin-1")
+    )
+    return " ".join("".join(printable).split())
 
 
 def _require_unique(ids: Offsets) -> None:
@@ -249,7 +253,7 @@ class _Words:
             yield self.plain[start : stop - 1].rstrip(), start, stop
 
 
-def _read_sections(words: _Words, data: bytes) -> tuple[tuple[str, ...], tuple[Section, ...]]:
+def _read_sections(words: _Words) -> tuple[tuple[str, ...], tuple[Section, ...]]:
     """Follow the order of sections that a STEP file must have."""
     statements = iter(words)
     word, _, _ = next(statements, (b"", 0, 0))
@@ -263,12 +267,12 @@ def _read_sections(words: _Words, data: bytes) -> tuple[tuple[str, ...], tuple[S
             ended = True
             continue
         if ended and not word.startswith(b"SIGNATURE"):
-            raise StepError(f"goes on after its end with {_shown(word)}; {EXPORT_AGAIN}")
+            raise StepError(f"goes on after its end with '{shown(word)}'; {EXPORT_AGAIN}")
         name = _section_name(word)
         if name == "SIGNATURE" and word.endswith(b"ENDSEC"):
             sections.append(Section(name, start, start, stop, stop))
             continue
-        section, found = _read_section(name, start, stop, statements, data)
+        section, found = _read_section(name, start, stop, statements)
         schemas = schemas or found
         sections.append(section)
     _require_whole(sections, ended)
@@ -286,11 +290,11 @@ def _section_name(word: bytes) -> str:
                 f"has the section {name}, which links it to other files and hides its instances "
                 "from readers; export it without external references"
             )
-    raise StepError(f"has {_shown(word)} where a section should begin; {EXPORT_AGAIN}")
+    raise StepError(f"has '{shown(word)}' where a section should begin; {EXPORT_AGAIN}")
 
 
 def _read_section(
-    name: str, start: int, body: int, statements: Iterator[tuple[bytes, int, int]], data: bytes
+    name: str, start: int, body: int, statements: Iterator[tuple[bytes, int, int]]
 ) -> tuple[Section, tuple[str, ...]]:
     """Read on to the section's end; of a header, return the schema names too."""
     schemas: tuple[str, ...] = ()
@@ -298,15 +302,10 @@ def _read_section(
         if word == b"ENDSEC" or (name == "SIGNATURE" and word.endswith(b"ENDSEC")):
             return Section(name, start, body, at, stop), schemas
         if name == "DATA":
-            raise StepError(f"has {_shown(word)} among its instances; {EXPORT_AGAIN}")
+            raise StepError(f"has '{shown(word)}' among its instances; {EXPORT_AGAIN}")
         if name == "HEADER" and word.startswith(b"FILE_SCHEMA"):
-            texts = _STEP_TEXT.findall(data, at, stop)
-            schemas = tuple(text.decode("ascii", "replace") for text in texts)
+            schemas = tuple(shown(text) for text in _STEP_TEXT.findall(word))
     raise StepError(f"is cut short in its section {name}; {EXPORT_AGAIN}")
-
-
-def _shown(word: bytes) -> str:
-    return f'"{_snippet(np.frombuffer(word, np.uint8), 0)}"'
 
 
 def _require_whole(sections: Sequence[Section], ended: bool) -> None:
@@ -327,8 +326,8 @@ def _require_inside(starts: Offsets, sections: Sequence[Section], plain: bytes) 
             first, last = np.searchsorted(starts, (section.body, section.last))
             inside[first:last] = True
     for outside in np.flatnonzero(~inside)[:1]:
-        shown = _shown(plain[starts[outside] : starts[outside] + 40])
-        raise StepError(f"has the instance {shown} outside its DATA sections; {EXPORT_AGAIN}")
+        instance = shown(plain[starts[outside] :][:40])
+        raise StepError(f"has the instance '{instance}' outside its DATA sections; {EXPORT_AGAIN}")
 
 
 def _insertion(data: bytes, sections: Sequence[Section]) -> tuple[int, bool]:

@@ -55,9 +55,9 @@ def mark_comments(data: bytes, scan: Scan) -> list[Comment]:
 
 def _find(data: bytes, scan: Scan) -> _Block | None:
     marks = mark_comments(data, scan)
-    if len(marks) != 2:
+    if len(marks) < 2:
         return None
-    first, last = marks
+    first, last = marks[-2:]
     begin = _BEGIN_PATTERN.fullmatch(data, first.start, first.stop)
     if begin is None or data[last.start : last.stop] != _END.encode():
         return None

@@ -16,7 +16,7 @@ from ifccheck.beam import Remark
 from ifccheck.errors import ModelError
 from ifccheck.ifc.archive import unpack
 from ifccheck.ifc.earlier import InUseError, may_hold_results, result_instances, without_instances
-from ifccheck.ifc.lexer import BYTE_ORDER_MARK, EXPORT_AGAIN, Scan, StepError, scan
+from ifccheck.ifc.lexer import BYTE_ORDER_MARK, EXPORT_AGAIN, Scan, StepError, scan, shown
 from ifccheck.ifc.marks import without_intact_block
 from ifccheck.ifc.step_text import escaped
 
@@ -120,8 +120,7 @@ def _parse_source(path: Path, raw: _Raw) -> _Sound:
     source = without_intact_block(raw.data, found)
     if source is not None:
         return _parse(path, source, _scan(path, source))
-    on_disk = path if raw.member is None else None
-    sound = _parse(path, raw.data, found, on_disk)
+    sound = _parse(path, raw.data, found, on_disk=raw.member is None)
     return _without_earlier(path, sound) if may_hold_results(raw.data) else sound
 
 
@@ -138,18 +137,26 @@ def _scan(path: Path, data: bytes) -> Scan:
     return found
 
 
-def _parse(path: Path, data: bytes, found: Scan, on_disk: Path | None = None) -> _Sound:
-    """Read bytes with ifcopenshell, from the file on the disk where it holds just these."""
+def _parse(path: Path, data: bytes, found: Scan, on_disk: bool = False) -> _Sound:
+    """Read bytes with ifcopenshell; ``on_disk`` where the file at the path holds just these."""
     readable = _readable(data)
-    if on_disk is not None and readable is data:
-        file = _open(path, on_disk)
-    else:
+    in_place = on_disk and readable is data
+    file = _open(path, path) if in_place else _open_copy(path, readable)
+    _require_all(path, data, found, file)
+    return _Sound(data, found, file)
+
+
+def _open_copy(path: Path, readable: bytes) -> Any:
+    try:
         with tempfile.TemporaryDirectory(prefix="ifccheck-") as folder:
             copy = Path(folder) / "model.ifc"
             copy.write_bytes(readable)
-            file = _open(path, copy)
-    _require_all(path, data, found, file)
-    return _Sound(data, found, file)
+            return _open(path, copy)
+    except OSError as error:
+        raise ModelError(
+            f"{path}: cannot be copied to the temporary folder ({error.strerror or error}); "
+            "free some space there"
+        ) from error
 
 
 def _readable(data: bytes) -> bytes:
@@ -171,8 +178,9 @@ def _readable(data: bytes) -> bytes:
 def _open(path: Path, place: Path) -> Any:
     try:
         return ifcopenshell.open(str(place))
-    except (ifcopenshell.Error, OSError) as error:
-        raise ModelError(f"{path}: {error}; {EXPORT_AGAIN}") from error
+    except (ifcopenshell.Error, OSError, RuntimeError) as error:
+        cause = str(error).removesuffix(", check logs")
+        raise ModelError(f"{path}: cannot be read ({cause}); {EXPORT_AGAIN}") from error
 
 
 def _require_all(path: Path, data: bytes, found: Scan, file: Any) -> None:
@@ -183,8 +191,7 @@ def _require_all(path: Path, data: bytes, found: Scan, file: Any) -> None:
     missing = np.flatnonzero(~np.isin(found.ids, np.fromiter(read, np.int64, len(read))))
     example = ""
     for first in missing[:1]:
-        line = data[found.starts[first] : found.stops[first]][:60].decode("ascii", "replace")
-        example = f" (the first is {' '.join(line.split())})"
+        example = f" (the first is {shown(data[found.starts[first] : found.stops[first]])})"
     raise ModelError(
         f"{path}: holds {len(found.ids)} instances but only {len(read)} can be read{example}; "
         f"{EXPORT_AGAIN}"
@@ -200,15 +207,25 @@ def _without_earlier(path: Path, sound: _Sound) -> _Sound:
             f"{path}: earlier results cannot be taken away ({error}); delete the BeamRating_ sets "
             "in the program that saved the model, or rate the model without results"
         ) from error
-    remarks = tuple(
-        Remark(None, _STAGE, f"{name} was not written by ifccheck for its beam: left as it is")
-        for name in foreign
-    )
+    remarks = _foreign_remarks(foreign)
     if not numbers:
         return _Sound(sound.data, sound.scan, sound.file, remarks)
     data = without_instances(sound.data, sound.scan, numbers)
     clean = _parse(path, data, _scan(path, data))
     return _Sound(clean.data, clean.scan, clean.file, remarks)
+
+
+def _foreign_remarks(foreign: dict[str, list[int]]) -> tuple[Remark, ...]:
+    return tuple(
+        Remark(
+            None,
+            _STAGE,
+            f"{len(numbers)} sets named {name} (the first is #{min(numbers)}) were not written by "
+            "ifccheck for their beams: they stay beside the new results",
+            "doubt",
+        )
+        for name, numbers in sorted(foreign.items())
+    )
 
 
 def _remarks(sound: _Sound) -> tuple[Remark, ...]:

@@ -163,16 +163,15 @@ def _require_properties(result: ResultSet) -> None:
 
 
 def _owner_history(opened: OpenedModel, add: Callable[[str], int]) -> str:
-    """Return the owner history that IFC2X3 asks for: the project's, or a complete one added.
+    """Return the owner history that IFC2X3 asks for: one of the model's, or a complete one added.
 
     Only one that something else uses is shared, so that it is never taken for one of ours.
     """
     if opened.schema != "IFC2X3":
         return "$"
-    for owner in opened.file.by_type("IfcOwnerHistory"):
-        if opened.file.get_total_inverses(owner):
-            return f"#{owner.id()}"
-    return f"#{_added_owner_history(add)}"
+    owners = opened.file.by_type("IfcOwnerHistory")
+    used = [owner.id() for owner in owners if opened.file.get_total_inverses(owner)]
+    return f"#{min(used) if used else _added_owner_history(add)}"
 
 
 def _added_owner_history(add: Callable[[str], int]) -> int:
