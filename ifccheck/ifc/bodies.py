@@ -11,10 +11,11 @@ from typing import TYPE_CHECKING, NamedTuple
 import numpy as np
 
 from ifccheck.ifc.clips import Cloud, Cut, read_cut
-from ifccheck.ifc.entity import REPRESENTATION, Entity, UnreadableError, get, several
+from ifccheck.ifc.entity import REPRESENTATION, Entity, UnreadableError, get, need, several
 from ifccheck.ifc.placements import IDENTITY, Matrix
 from ifccheck.ifc.profile_curves import Points
-from ifccheck.ifc.profiles import Profile, Profiles
+from ifccheck.ifc.profile_shapes import Profile
+from ifccheck.ifc.profiles import Profiles
 from ifccheck.ifc.vectors import Triple, combined, cross, scaled, unit
 
 if TYPE_CHECKING:
@@ -123,10 +124,10 @@ def _resolved(
         if item.is_a() != "IfcMappedItem":
             yield Placed(item, matrix, depth > 0)
             continue
-        source = get(item, "MappingSource")
-        mapping = context.placements.operator(get(item, "MappingTarget"))
+        source = need(item, "MappingSource")
+        mapping = context.placements.operator(need(item, "MappingTarget"))
         origin = context.placements.axes(get(source, "MappingOrigin"))
-        inner = get(source, "MappedRepresentation")
+        inner = need(source, "MappedRepresentation")
         yield from _resolved(context, inner, matrix @ mapping @ origin, depth + 1)
 
 
@@ -137,8 +138,8 @@ def read_prism(context: Context, profiles: Profiles, placed: Placed) -> Prism:
     while item.is_a() in BOOLEANS:
         if get(item, "Operator") != "DIFFERENCE":
             raise UnreadableError(f"body is a boolean {get(item, 'Operator')}: not read yet")
-        cuts.append(read_cut(get(item, "SecondOperand"), context.placements))
-        item = get(item, "FirstOperand")
+        cuts.append(read_cut(need(item, "SecondOperand"), context.placements))
+        item = need(item, "FirstOperand")
     kind = item.is_a()
     if kind != "IfcExtrudedAreaSolid":
         raise UnreadableError(f"body is a {NOT_READ_YET.get(kind, kind)}: not read yet")
@@ -149,13 +150,16 @@ def read_prism(context: Context, profiles: Profiles, placed: Placed) -> Prism:
 def extrusion(context: Context, profiles: Profiles, placed: Placed) -> Prism:
     """Return an IfcExtrudedAreaSolid in the building; the taper of a tapered one is not in it."""
     item, matrix, mapped = placed
-    profile = profiles.of(item.get_argument(0))
-    position = context.placements.axes(item.get_argument(1))
-    depth = item.get_argument(3) * context.units.length
+    area, position, direction, depth = (item.get_argument(number) for number in range(4))
+    if area is None or direction is None or depth is None:
+        raise UnreadableError("body is an extrusion without a profile, a direction or a depth")
+    profile = profiles.of(area)
+    axes = context.placements.axes(position)
+    depth *= context.units.length
     if not (math.isfinite(depth) and depth > 0.0):
         raise UnreadableError(f"body is extruded by {depth:g} mm")
-    whole = matrix if position is IDENTITY else matrix @ position
-    along = combined(whole[:3, :3].T.tolist(), scaled(unit(item.get_argument(2)[0]), depth))
+    whole = matrix if axes is IDENTITY else matrix @ axes
+    along = combined(whole[:3, :3].T.tolist(), scaled(unit(direction[0]), depth))
     return _unscaled(profile, whole, along) if mapped else Prism(profile, whole, along)
 
 

@@ -11,7 +11,7 @@ import numpy as np
 from ifccheck.beam import Box
 from ifccheck.ifc.bodies import BOOLEANS, Placed, Prism, body_items, extrusion
 from ifccheck.ifc.clips import Cloud, left_over, read_cut
-from ifccheck.ifc.entity import Entity, UnreadableError, get
+from ifccheck.ifc.entity import Entity, UnreadableError, get, need
 from ifccheck.ifc.placements import Matrix
 from ifccheck.ifc.profiles import Profiles
 from ifccheck.ifc.vectors import Triple, added, combined, cross, dot, rounded
@@ -64,7 +64,7 @@ class Boxes:
         if kind in BOOLEANS:
             return self._boolean(placed)
         if kind == "IfcCsgSolid":
-            return self._item(placed._replace(item=get(item, "TreeRootExpression")))
+            return self._item(placed._replace(item=need(item, "TreeRootExpression")))
         if any(item.is_a(name) for name in FACETED):
             points = self._faceted(item)
             return points @ matrix[:3, :3].T + matrix[:3, 3], None
@@ -72,8 +72,8 @@ class Boxes:
 
     def _boolean(self, placed: Placed) -> tuple[Cloud, Matrix | None]:
         item, matrix, _ = placed
-        cloud, axes = self._item(placed._replace(item=get(item, "FirstOperand")))
-        operator, second = get(item, "Operator"), get(item, "SecondOperand")
+        cloud, axes = self._item(placed._replace(item=need(item, "FirstOperand")))
+        operator, second = get(item, "Operator"), need(item, "SecondOperand")
         if operator == "UNION":
             return np.vstack((cloud, self._item(placed._replace(item=second))[0])), None
         if operator != "DIFFERENCE" or second.is_a() != "IfcHalfSpaceSolid":
@@ -123,7 +123,7 @@ def _point_list(entity: Entity) -> list[tuple[float, ...]]:
 
 def _round(entity: Entity) -> list[tuple[float, ...]]:
     """Corners of the cube round a circle or an ellipse."""
-    x, y, z = get(get(entity, "Position"), "Location")[0]
+    x, y, z = need(need(entity, "Position"), "Location")[0]
     r = max(get(entity, name) or 0.0 for name in ("Radius", "SemiAxis1", "SemiAxis2"))
     return [(x + a, y + b, z + c) for a in (-r, r) for b in (-r, r) for c in (-r, r)]
 

@@ -7,7 +7,7 @@ from dataclasses import dataclass, replace
 import numpy as np
 import numpy.typing as npt
 
-from ifccheck.ifc.entity import Entity, UnreadableError, get
+from ifccheck.ifc.entity import Entity, UnreadableError, get, need
 from ifccheck.ifc.placements import Matrix, Placements
 from ifccheck.ifc.profile_curves import Points, read_pieces, ring
 
@@ -53,7 +53,7 @@ def read_cut(operand: Entity, placements: Placements) -> Cut:
     """Return the cut that subtracting a half-space makes; raises UnreadableError for others."""
     if not operand.is_a("IfcHalfSpaceSolid"):
         raise UnreadableError(f"body is cut by an {operand.is_a()}: not read yet")
-    surface = get(operand, "BaseSurface")
+    surface = need(operand, "BaseSurface")
     if not surface.is_a("IfcPlane"):
         raise UnreadableError(f"body is cut along an {surface.is_a()}: not read yet")
     plane = placements.axes(get(surface, "Position"))
@@ -64,7 +64,7 @@ def read_cut(operand: Entity, placements: Placements) -> Cut:
 
 
 def _bound(operand: Entity, placements: Placements) -> Bound:
-    polygon = ring(read_pieces(get(operand, "PolygonalBoundary"), placements))
+    polygon = ring(read_pieces(need(operand, "PolygonalBoundary"), placements))
     into_plane: Matrix = np.linalg.inv(placements.axes(get(operand, "Position"))).astype(float)
     return Bound(into_plane, polygon)
 

@@ -36,6 +36,14 @@ def get(entity: Entity, name: str) -> Any:
     return None if position is None else entity.get_argument(position)
 
 
+def need(entity: Entity, name: str) -> Any:
+    """Return an attribute that must be there; raises UnreadableError where it is empty."""
+    value = get(entity, name)
+    if value is None:
+        raise UnreadableError(f"{label(entity)} has no {name}")
+    return value
+
+
 def text(entity: Entity, name: str) -> str:
     """Return a text attribute, empty where it is not given."""
     value = get(entity, name)

@@ -14,6 +14,7 @@ from ifccheck.ifc.entity import (
     UnreadableError,
     get,
     label,
+    need,
     several,
 )
 from ifccheck.ifc.vectors import Triple
@@ -120,12 +121,12 @@ class Placements:
         ):
             matrix[:3, 1] = -matrix[:3, 1]
         matrix[:3, :3] *= _scales(operator)
-        for row, coordinate in enumerate(get(operator, "LocalOrigin")[0]):
+        for row, coordinate in enumerate(need(operator, "LocalOrigin")[0]):
             matrix[row, 3] = coordinate * self.scale
         return matrix
 
     def _on_grid(self, placement: Entity, parent: Matrix) -> Matrix:
-        intersection = get(placement, "PlacementLocation")
+        intersection = need(placement, "PlacementLocation")
         axes = several(intersection, "IntersectingAxes")
         if len(axes) != 2:
             raise UnreadableError(f"{label(placement)} does not name two grid axes")
@@ -163,7 +164,7 @@ class Placements:
             raise UnreadableError(f"{label(axis)} belongs to no grid") from None
 
     def _grid_line(self, axis: Entity) -> Matrix:
-        curve = get(axis, "AxisCurve")
+        curve = need(axis, "AxisCurve")
         if not curve.is_a("IfcPolyline") or len(curve[0]) != 2:
             raise UnreadableError(f"grid axis {label(axis)} is no straight polyline")
         ends = [point.get_argument(0)[:2] for point in curve[0]]

@@ -13,7 +13,7 @@ from dataclasses import dataclass
 import numpy as np
 import numpy.typing as npt
 
-from ifccheck.ifc.entity import Entity, UnreadableError, get, label, several
+from ifccheck.ifc.entity import Entity, UnreadableError, get, label, need, several
 from ifccheck.ifc.placements import Placements
 
 Points = npt.NDArray[np.float64]
@@ -143,12 +143,15 @@ def read_pieces(curve: Entity, placements: Placements) -> list[Piece]:
 
 def _polyline(curve: Entity, placements: Placements) -> list[Piece]:
     scale = placements.scale
-    return [Corner((c[0] * scale, c[1] * scale)) for c in (point[0] for point in curve[0])]
+    return [
+        Corner((c[0] * scale, c[1] * scale))
+        for c in (point[0] for point in several(curve, "Points"))
+    ]
 
 
 def _indexed(curve: Entity, placements: Placements) -> list[Piece]:
     scale = placements.scale
-    points = [(c[0] * scale, c[1] * scale) for c in get(get(curve, "Points"), "CoordList")]
+    points = [(c[0] * scale, c[1] * scale) for c in need(need(curve, "Points"), "CoordList")]
     segments = several(curve, "Segments")
     if not segments:
         return [Corner(point) for point in points]
@@ -183,10 +186,10 @@ def _conic(curve: Entity, placements: Placements) -> Arc:
     """A whole circle or ellipse, starting on its own x axis."""
     matrix = placements.axes(get(curve, "Position"))
     if curve.is_a("IfcCircle"):
-        across = along = get(curve, "Radius") * placements.scale
+        across = along = need(curve, "Radius") * placements.scale
     else:
-        along = get(curve, "SemiAxis1") * placements.scale
-        across = get(curve, "SemiAxis2") * placements.scale
+        along = need(curve, "SemiAxis1") * placements.scale
+        across = need(curve, "SemiAxis2") * placements.scale
     return Arc(
         (float(matrix[0, 3]), float(matrix[1, 3])),
         (float(matrix[0, 0] * along), float(matrix[1, 0] * along)),
@@ -205,7 +208,7 @@ def _composite(curve: Entity, placements: Placements) -> list[Piece]:
     for segment in several(curve, "Segments"):
         if not segment.is_a("IfcCompositeCurveSegment"):
             raise UnreadableError(f"outline drawn by an {segment.is_a()}")
-        part = read_pieces(get(segment, "ParentCurve"), placements)
+        part = read_pieces(need(segment, "ParentCurve"), placements)
         pieces += part if get(segment, "SameSense") is not False else backwards(part)
     return pieces
 
@@ -216,7 +219,7 @@ def backwards(pieces: Sequence[Piece]) -> list[Piece]:
 
 
 def _trimmed(curve: Entity, placements: Placements) -> list[Piece]:
-    basis = get(curve, "BasisCurve")
+    basis = need(curve, "BasisCurve")
     trims = several(curve, "Trim1"), several(curve, "Trim2")
     if basis.is_a("IfcLine"):
         return [Corner(_on_line(basis, trim, placements)) for trim in trims]
@@ -252,9 +255,9 @@ def _on_line(line: Entity, trim: Sequence[Entity], placements: Placements) -> Pl
         return point
     if parameter is None:
         raise UnreadableError(f"{label(line)} is trimmed nowhere")
-    start, vector = get(line, "Pnt")[0], get(line, "Dir")
-    ratios = get(vector, "Orientation")[0]
-    reach = parameter * get(vector, "Magnitude") / math.hypot(ratios[0], ratios[1])
+    start, vector = need(line, "Pnt")[0], need(line, "Dir")
+    ratios = need(vector, "Orientation")[0]
+    reach = parameter * need(vector, "Magnitude") / math.hypot(ratios[0], ratios[1])
     return (
         (start[0] + ratios[0] * reach) * placements.scale,
         (start[1] + ratios[1] * reach) * placements.scale,

@@ -21,7 +21,7 @@ from ifccheck.ifc.clips import acts
 from ifccheck.ifc.entity import UnreadableError
 from ifccheck.ifc.placements import Matrix
 from ifccheck.ifc.profile_curves import Corner, Place, after, ring
-from ifccheck.ifc.profiles import Elevation, Profile, Turned
+from ifccheck.ifc.profile_shapes import Elevation, Profile, Turned
 from ifccheck.ifc.vectors import Triple, added, combined, cross, dot, rounded, scaled, size
 
 VERTICAL = math.cos(math.radians(10.0))

@@ -8,7 +8,7 @@ from dataclasses import dataclass
 from types import MappingProxyType
 from typing import Any, Literal
 
-from ifccheck.ifc.entity import Entity, UnreadableError, get, several, text
+from ifccheck.ifc.entity import Entity, UnreadableError, get, need, several, text
 
 UnitKind = Literal[
     "length", "area", "volume", "second_moment", "angle", "force", "pressure", "line_force",
@@ -184,9 +184,9 @@ def _si_scale(unit: Entity) -> tuple[float, Dimensions]:
     if unit.is_a("IfcSIUnit"):
         return _si_unit(unit)
     if unit.is_a("IfcConversionBasedUnit"):
-        measure = get(unit, "ConversionFactor")
-        scale, dimensions = _si_scale(get(measure, "UnitComponent"))
-        return float(get(measure, "ValueComponent")[0]) * scale, dimensions
+        measure = need(unit, "ConversionFactor")
+        scale, dimensions = _si_scale(need(measure, "UnitComponent"))
+        return float(need(measure, "ValueComponent")[0]) * scale, dimensions
     if unit.is_a("IfcDerivedUnit"):
         return _derived_unit(unit)
     raise UnreadableError(f"unit of class {unit.is_a()}")
@@ -204,8 +204,8 @@ def _si_unit(unit: Entity) -> tuple[float, Dimensions]:
 def _derived_unit(unit: Entity) -> tuple[float, Dimensions]:
     total, length, mass, time = 1.0, 0, 0, 0
     for element in several(unit, "Elements"):
-        scale, (of_length, of_mass, of_time) = _si_scale(get(element, "Unit"))
-        exponent = get(element, "Exponent")
+        scale, (of_length, of_mass, of_time) = _si_scale(need(element, "Unit"))
+        exponent = need(element, "Exponent")
         total *= scale**exponent
         length += of_length * exponent
         mass += of_mass * exponent
