@@ -277,7 +277,7 @@ def write_girders(works: PrintWorks) -> None:
     """Girders on line B: physical bars, fixed at both ends by the brief."""
     length = BAY_X - COLUMN
     supply = [((4, "25M"), (4, "25M"), 200.0), ((3, "20M"), (4, "25M"), 200.0),
-              ((4, "25M"), (4, "25M"), 400.0), ((4, "25M"), (3, "25M"), 200.0),
+              ((4, "25M"), (4, "25M"), 520.0), ((4, "25M"), (3, "25M"), 200.0),
               ((4, "25M"), (4, "25M"), 200.0)]  # fmt: skip
     for i, (bottom, top, spacing) in enumerate(supply):
         mark = f"G-{101 + i}"
@@ -288,7 +288,7 @@ def write_girders(works: PrintWorks) -> None:
             second = replace(layers[0], count=2, z=layers[0].z + 60.0, start=1100.0, end=length - 1100.0, hooks=(False, False))  # fmt: skip
             layers.append(second)
         zones = rectangle_zones(COLUMN, 700.0, [
-            ("10M", spacing, 75.0, 1675.0), ("10M", min(1.5 * spacing, 400.0), 1875.0, length - 1875.0),
+            ("10M", spacing, 75.0, 1675.0), ("10M", max(300.0, spacing), 1875.0, length - 1875.0),
             ("10M", spacing, length - 1675.0, length - 75.0),
         ])  # fmt: skip
         works.bars(beam, mark, layers, zones)

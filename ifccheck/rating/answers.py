@@ -56,7 +56,10 @@ def covered_by(states: Sequence[LimitState]) -> tuple[str, ...]:
 
 def _rating(batch: Batch, row: int, standard: Standard, cases: Sequence[Case]) -> Rating:
     subject = batch.subjects[row]
-    states = tuple(verdict.limit_state_rating(s, row, batch.places) for s in batch.states)
+    missing = _missing(subject)
+    states = tuple(
+        verdict.limit_state_rating(state, row, batch.places, missing) for state in batch.states
+    )
     states = verdict.with_unknown_steel(states, _silent_faces(batch, row))
     reasons = (*subject.reasons, *verdict.incomplete_reasons(states))
     word = verdict.verdict_of(states, reasons)
@@ -75,6 +78,19 @@ def _rating(batch: Batch, row: int, standard: Standard, cases: Sequence[Case]) -
         checked=covered_by([s.state for s in batch.states]),
         not_checked=standard.not_checked,
     )
+
+
+def _missing(subject: Subject) -> str:
+    """The inputs that no one gives, for a limit state that needs one of them."""
+    unstated = sorted({zone.origin or "the stirrups" for zone in subject.stirrups if not zone.legs})
+    found = []
+    if not subject.stirrups_known:
+        found.append("no source says whether there are stirrups")
+    if unstated:
+        found.append(f"the legs of the stirrups are not stated ({', '.join(unstated)})")
+    if math.isnan(subject.aggregate_size.value):
+        found.append("the aggregate size is not given (defaults.aggregate_size)")
+    return "; ".join(found) or "an input is not a number"
 
 
 def _silent_faces(batch: Batch, row: int) -> tuple[Face, ...]:

@@ -7,6 +7,8 @@ from dataclasses import dataclass
 
 import numpy as np
 
+from ifccheck.analysis.spans import FREE, SpanTable
+from ifccheck.analysis.stations import SAME_PLACE, StationTable
 from ifccheck.beam import Anchor, Bars, Outline
 from ifccheck.mechanics.arrays import (
     ANCHOR_FULL,
@@ -21,6 +23,10 @@ from ifccheck.mechanics.arrays import (
 from ifccheck.mechanics.spacing import distance_to_surface, nearest_neighbour
 from ifccheck.mechanics.width_profile import overhangs, pack_strips, strips_of
 from ifccheck.rating.subject import Subject
+
+END_COVER = 100.0
+"""Greatest distance from a free end at which bars may stop and count as covered only [mm]"""
+_INSIDE_LAST_BAR = 25.0
 
 _ANCHOR = {
     Anchor.STRAIGHT: ANCHOR_STRAIGHT,
@@ -174,6 +180,34 @@ def make_station_arrays(
         stirrup_yield=strength,
         inside=_between(x, faces[beam]),
     )
+
+
+def checked_stretch(members: Members, spans: SpanTable) -> Floats:
+    """Where the checks of each beam begin and end [mm] (B, 2).
+
+    The span; but at a free end whose bars stop in the end cover, the last END_COVER at most is
+    plain concrete, and checks end a little inside the last bar, whose stress there is next to
+    nothing. What stands on that stretch acts on the rest all the same.
+    """
+    present = members.layer_area > 0.0
+    first = np.where(present, members.layer_start, np.inf).min(axis=1)
+    last = np.where(present, members.layer_end, -np.inf).max(axis=1)
+    start_tip = (spans.start_kind == FREE) & (first - spans.start <= END_COVER)
+    end_tip = (spans.end_kind == FREE) & (spans.end - last <= END_COVER)
+    return np.stack(
+        [
+            np.where(start_tip, np.maximum(spans.start, first + _INSIDE_LAST_BAR), spans.start),
+            np.where(end_tip, np.minimum(spans.end, last - _INSIDE_LAST_BAR), spans.end),
+        ],
+        axis=-1,
+    )
+
+
+def within(stations: StationTable, stretch: Floats) -> StationTable:
+    """The stations that lie on a stretch of each beam (B, 2)."""
+    low, high = stretch[stations.beam].T
+    kept = (stations.x >= low - SAME_PLACE) & (stations.x <= high + SAME_PLACE)
+    return StationTable(stations.beam[kept], stations.x[kept], stations.side[kept])
 
 
 def _between(x: Floats, faces: Floats) -> Bools:

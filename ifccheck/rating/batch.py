@@ -34,10 +34,12 @@ from ifccheck.rating import verdict
 from ifccheck.rating.assembly import (
     RunTable,
     StirrupTable,
+    checked_stretch,
     make_station_arrays,
     members_of,
     run_table,
     stirrup_table,
+    within,
 )
 from ifccheck.rating.factors import Factors, rating_factors
 from ifccheck.rating.subject import Subject
@@ -88,6 +90,8 @@ class _Frame:
     faces: Floats
     """(B, 2)"""
     loads: LoadTable
+    checked: Floats
+    """Where checks begin and end on each beam [mm] (B, 2)"""
 
 
 def batches(
@@ -168,13 +172,15 @@ def _frame(subjects: Sequence[Subject], cases: Sequence[Case]) -> _Frame:
         area_end=runs.area,
         unit_weight=np.array([subject.unit_weight.value for subject in subjects])[runs.beam],
     )
+    members = members_of(subjects, outlines)
     return _Frame(
-        members=members_of(subjects, outlines),
+        members=members,
         runs=runs,
         zones=stirrup_table(subjects),
         spans=spans,
         faces=np.array([subject.faces for subject in subjects]),
         loads=join_loads(stated, weight),
+        checked=checked_stretch(members, spans),
     )
 
 
@@ -222,7 +228,7 @@ def _effects(
     fixed = _fixed_places(frame, critical)
 
     def at(extra: Places) -> tuple[Effects, StationTable]:
-        stations = make_stations(frame.spans, frame.loads, extra)
+        stations = within(make_stations(frame.spans, frame.loads, extra), frame.checked)
         found: CaseEffects = case_effects(frame.spans, frame.loads, stations, len(cases))
         return combine(found, factors), stations
 
@@ -237,6 +243,7 @@ def _fixed_places(frame: _Frame, critical: Floats) -> Places:
     row, layer = np.nonzero(m.layer_area > 0.0)
     edges = [
         (np.repeat(beams, 2), frame.faces.ravel(), True),
+        (np.repeat(beams, 2), frame.checked.ravel(), False),
         (np.repeat(beams, 2), critical.ravel(), False),
         (runs.beam, runs.start, True),
         (runs.beam, runs.end, True),

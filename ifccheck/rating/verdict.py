@@ -47,10 +47,13 @@ class Places:
         return float(self.x[element % self.x.size])
 
 
-def limit_state_rating(found: Evaluated, beam: int, places: Places) -> LimitStateRating:
+def limit_state_rating(
+    found: Evaluated, beam: int, places: Places, missing: str
+) -> LimitStateRating:
     """What one limit state says of one beam (a row of the batch).
 
-    A nan at any station makes the whole limit state nan, unless another station exceeds 1.
+    A nan at any station makes the whole limit state nan, unless another station exceeds 1;
+    outside no clause's range it comes from what is ``missing``.
     """
     worst, state, check = found.worst, found.state, found.check
     utilisation = float(worst.utilisation[beam])
@@ -69,7 +72,7 @@ def limit_state_rating(found: Evaluated, beam: int, places: Places) -> LimitStat
         demand_unit=state.demand_unit,
         clause=state.clause,
         counted=True,
-        why_not=_why_not(check, element) if incomplete else "",
+        why_not=(_outside(check, element) or missing) if incomplete else "",
     )
 
 
@@ -77,12 +80,12 @@ def _at(values: Floats, check: Check, element: int) -> float:
     return float(np.broadcast_to(values, check.utilisation.shape).reshape(-1)[element])
 
 
-def _why_not(check: Check, element: int) -> str:
+def _outside(check: Check, element: int) -> str | None:
     for outside in check.outside:
         mask = np.broadcast_to(outside.mask, check.utilisation.shape).reshape(-1)
         if mask[element]:
             return f"outside {outside.clause}: {outside.text}"
-    return "an input is missing"
+    return None
 
 
 def with_unknown_steel(
