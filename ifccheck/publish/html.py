@@ -37,14 +37,15 @@ from ifccheck.rating import Rating
 WORST = 10
 MOST_NAMED = 12
 """Marks named in a list before the rest are only counted."""
-GAUGE_END = 1.25
+GAUGE, GAUGE_END = 60, 1.25
+"""Length of the bar of a utilisation [px], and the utilisation at its end."""
 
 
 def render(report: Report) -> str:
     """Return the summary as one HTML file."""
     rows = _rows(report)
     numbers = {row.key: row.number for row in rows}
-    style, script = tint.style() + asset("page.css"), asset("page.js")
+    style, script = _style(), asset("page.js")
     return template("page.html.j2").render(
         policy=_policy(style, script),
         style=Markup(style),
@@ -121,7 +122,7 @@ class _Row:
     band: str
     utilisation: str
     used: str
-    gauge: Markup
+    gauge: str
     governs: str
     governs_index: str
     x: str
@@ -159,7 +160,7 @@ def _row(
         band=band(rating),
         utilisation=_sortable(rating.utilisation),
         used=utilisation_words(rating.utilisation),
-        gauge=Markup(_gauge(rating.utilisation, band(rating))) if known else Markup(""),
+        gauge=_gauge(rating.utilisation) if known else "",
         governs=worst.title if worst else "",
         governs_index=str(governing[worst.title]) if worst else "",
         x=_metres(worst.position) if worst else "",
@@ -197,15 +198,16 @@ def _safe(rating: Rating, case: str) -> _Safe:
     return _Safe(_sortable(found.factor), factor_words(found.factor), found.text)
 
 
-def _gauge(utilisation: float, kind: str) -> str:
-    """A bar that ends where the scale ends, with a stroke at 1."""
-    width = min(utilisation, GAUGE_END) / GAUGE_END * 50.0
-    bar = f'<path class="{kind} body" d="M0 2h{number(width)}v6h{number(-width)}z"/>'
-    full = number(50.0 / GAUGE_END)
-    return (
-        f'<svg class="gauge" viewBox="0 0 51 10" aria-hidden="true">{bar}'
-        f'<path class="one" d="M{full} 0v10"/></svg>'
-    )
+def _gauge(utilisation: float) -> str:
+    """Class of a bar as long as the utilisation, which ends where the scale ends."""
+    return f"w{math.ceil(min(utilisation, GAUGE_END) / GAUGE_END * GAUGE)}"
+
+
+def _style() -> str:
+    """The style sheet, with what it shares with the drawings and the table."""
+    widths = "".join(f".w{i}{{width:{i}px}}" for i in range(GAUGE + 1))
+    full = f":root{{--gauge:{GAUGE}px;--one:{GAUGE / GAUGE_END:.0f}px}}"
+    return tint.style() + full + widths + asset("page.css")
 
 
 def _title_block(report: Report) -> list[tuple[str, str]]:

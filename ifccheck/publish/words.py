@@ -37,7 +37,7 @@ def plain(text: str) -> str:
     >>> plain("B-1\\n\\x1b[31m\\u202e")
     'B-1 �[31m�'
     """
-    return _UNSHOWABLE.sub("\ufffd", _BLANKS.sub(" ", text))
+    return text if text.isprintable() else _UNSHOWABLE.sub("\ufffd", _BLANKS.sub(" ", text))
 
 
 def printable(text: str) -> str:
@@ -46,7 +46,7 @@ def printable(text: str) -> str:
     >>> printable("B-1\\n\\x1b[31mred")
     'B-1 [31mred'
     """
-    return _UNSHOWABLE.sub("", _BLANKS.sub(" ", text))
+    return text if text.isprintable() else _UNSHOWABLE.sub("", _BLANKS.sub(" ", text))
 
 
 def joined(words: Iterable[str]) -> str:
