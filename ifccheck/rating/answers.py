@@ -19,6 +19,7 @@ from ifccheck.beam import (
     Support,
     Verdict,
 )
+from ifccheck.mechanics.arrays import Bools
 from ifccheck.rating import verdict
 from ifccheck.rating.batch import Batch
 from ifccheck.rating.results import BasisItem, LimitStateRating, Rating, SafeLoad
@@ -143,13 +144,23 @@ def _notes(batch: Batch, row: int) -> list[Remark]:
     stations = slice(batch.first[row], batch.first[row + 1])
     remarks = []
     for note in batch.notes:
-        places = batch.stations.x[stations][note.mask[stations]]
+        mask = note.mask[stations] & _in_tension(batch, note.face, stations)
+        places = batch.stations.x[stations][mask]
         if places.size:
             low, high = show(places.min(), "length"), show(places.max(), "length")
             stretch = f"at x = {low}" if low == high else f"between x = {low} and {high}"
             text = f"{note.text} ({note.clause}), {stretch}"
             remarks.append(Remark(batch.subjects[row].beam.key, "rating", text))
     return remarks
+
+
+def _in_tension(batch: Batch, face: Face | None, stations: slice) -> Bools:
+    if face is None:
+        return np.ones(stations.stop - stations.start, dtype=np.bool_)
+    envelope = batch.envelope
+    if face == "bottom":
+        return np.asarray(envelope.moment_high[stations] > 0.0)
+    return np.asarray(envelope.moment_low[stations] < 0.0)
 
 
 # What a rating rests on --------------------------------------------------------------------

@@ -6,7 +6,7 @@ from collections.abc import Callable, Sequence
 from dataclasses import dataclass
 from typing import Any, Protocol
 
-from ifccheck.beam import Case, Combination
+from ifccheck.beam import Case, Combination, Face
 from ifccheck.mechanics.arrays import Bools, Demand, Floats, Ints, Members, Stations
 
 
@@ -99,6 +99,8 @@ class Note:
     clause: str
     text: str
     mask: Bools
+    face: Face | None = None
+    """Where given, the remark only matters where this face may be in tension"""
 
 
 @dataclass(frozen=True, slots=True)

@@ -6,6 +6,7 @@ from dataclasses import dataclass, replace
 
 import numpy as np
 
+from ifccheck.beam import Face
 from ifccheck.mechanics.arrays import Bools, Demand, Floats
 from ifccheck.standards.contract import CalculationLine, Check, LimitState, Note, Outside
 from ifccheck.standards.csa_a23_3_14 import materials
@@ -170,22 +171,25 @@ def notes(prepared: Prepared) -> tuple[Note, ...]:
     Notes
     -----
     Looked at where the bars of the face are fully developed. Whether the steel is a third
-    more than the analysis asks for (10.5.1.3) is not known here, nor whether the face is
-    ever in tension.
+    more than the analysis asks for (10.5.1.3) is not known here.
 
     References
     ----------
     CSA A23.3-14, 10.5.1
     """
-    faces = ((prepared.sagging, "soffit"), (prepared.hogging, "top"))
+    states: tuple[tuple[FaceState, str, Face], ...] = (
+        (prepared.sagging, "soffit", "bottom"),
+        (prepared.hogging, "top", "top"),
+    )
     return tuple(
         Note(
             "10.5.1",
-            f"where the {name} is in tension, less than the minimum flexural reinforcement, "
+            f"the {name} has less than the minimum flexural reinforcement, "
             "which is enough only if it is a third more than the moment needs",
-            _below_minimum(face),
+            _below_minimum(state),
+            face,
         )
-        for face, name in faces
+        for state, name, face in states
     )
 
 
