@@ -388,7 +388,7 @@ def test_every_line_gives_its_field(state_of, case):
     state, acting = case
     check = state_of.check(state, acting)
     for place in np.ndindex(check.utilisation.shape):
-        if np.isfinite(check.utilisation[place]) and check.utilisation[place] > 0.0:
+        if not np.isnan(check.utilisation[place]) and check.utilisation[place] > 0.0:
             assert_lines_give_their_fields(state_of.lines, check, place)
 
 

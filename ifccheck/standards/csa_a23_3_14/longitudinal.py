@@ -171,7 +171,7 @@ def _both_sides(
     the steel that suffices for that suffices, and nothing is said otherwise.
     """
     legs_unknown = np.isnan(face.stirrup_area)
-    outside = shear.beyond_strain | shear.beyond_simplified
+    outside = shear.beyond_strain | shear.beyond_simplified | shear.without_steel
     known = replace(shear, stirrup_term=np.where(legs_unknown, 0.0, shear.stirrup_term))
     theta = np.where(outside, np.nan, shear.theta)
     peaks = demand.peak_sagging, demand.peak_hogging

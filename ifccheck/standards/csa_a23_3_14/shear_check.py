@@ -68,6 +68,15 @@ class ShearDetails:
     simplified_effective: Bools
     simplified_plain_depth: Bools
     simplified_plain_spacing: Bools
+    computable: Bools
+    """The concrete term can be worked out"""
+    without_steel: Bools
+    """The general method finds no developed tension steel: eps_x has no bound"""
+    idle: Bools
+    """No stirrups, or such as do not count"""
+    legs_unknown: Bools
+    stirrup_force: Bools
+    """The stirrup term can be worked out, and is not 0"""
     beyond_strain: Bools
     beyond_simplified: Bools
     beyond_materials: Bools
@@ -286,29 +295,38 @@ def _details(
         greatest=terms.greatest,
         steel_present=strain.present.astype(np.float64),
         resistance=np.where(outside, np.nan, resistance),
-        **_methods(face, stirrups, cracks),
+        **_methods(face, strain, stirrups, cracks),
         beyond_strain=beyond_strain,
         beyond_simplified=face.beyond_simplified,
         beyond_materials=face.beyond_materials,
     )
 
 
-def _methods(face: TensionFace, stirrups: _Stirrups, cracks: _Cracks) -> dict[str, Bools]:
+def _methods(
+    face: TensionFace, strain: _Strain, stirrups: _Stirrups, cracks: _Cracks
+) -> dict[str, Bools]:
     """Which method and which of its forms holds, by the names of the details."""
     simplified = face.simplified
     effective, plain = stirrups.effective, ~stirrups.effective
     by_depth = cracks.aggregate >= formulas.SIMPLIFIED_AGGREGATE
+    general = ~simplified & (strain.area > 0.0)
+    computable = simplified | general
     return {
         "has_stirrups": stirrups.present,
         "effective": effective,
         "plain": plain,
-        "general": ~simplified,
-        "general_effective": effective & ~simplified,
-        "general_plain": plain & ~simplified,
+        "general": general,
+        "general_effective": effective & general,
+        "general_plain": plain & general,
         "simplified": simplified,
         "simplified_effective": effective & simplified,
         "simplified_plain_depth": plain & simplified & by_depth,
         "simplified_plain_spacing": plain & simplified & ~by_depth,
+        "computable": computable,
+        "without_steel": ~computable,
+        "idle": plain & ~np.isnan(face.stirrup_area),
+        "legs_unknown": np.isnan(face.stirrup_area),
+        "stirrup_force": effective & computable,
     }
 
 

@@ -171,7 +171,7 @@ STIRRUP_TERM_LINES = (
         "stirrup_term",
         "N",
         "11.3.5.1",
-        "effective",
+        "stirrup_force",
     ),
     CalculationLine(
         "Vs",
@@ -180,7 +180,10 @@ STIRRUP_TERM_LINES = (
         "stirrup_term",
         "N",
         "11.2.8.2, 11.3.8",
-        "plain",
+        "idle",
+    ),
+    CalculationLine(
+        "Vs", "stirrup legs not stated", "", "stirrup_term", "N", "11.3.5.1", "legs_unknown"
     ),
 )
 
@@ -192,6 +195,7 @@ RESISTANCE_LINES = (
         "concrete_term",
         "N",
         "11.3.4",
+        "computable",
     ),
     *STIRRUP_TERM_LINES,
     CalculationLine(
@@ -204,7 +208,22 @@ RESISTANCE_LINES = (
     ),
     given("k", "1 where the face has tension steel, else 0", "steel_present", "", "11.3.1"),
     CalculationLine(
-        "Vr", "shear resistance", "k * min(Vc + Vs, Vr_max)", "resistance", "N", "11.3.3"
+        "Vr",
+        "shear resistance",
+        "k * min(Vc + Vs, Vr_max)",
+        "resistance",
+        "N",
+        "11.3.3",
+        "computable",
+    ),
+    CalculationLine(
+        "Vr",
+        "shear resistance: none without developed tension steel",
+        "",
+        "resistance",
+        "N",
+        "11.3.6.4",
+        "without_steel",
     ),
 )
 
