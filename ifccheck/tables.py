@@ -11,7 +11,7 @@ import math
 from collections.abc import Iterable, Mapping, Sequence
 from typing import TYPE_CHECKING
 
-from ifccheck.beam import Beam, OutOfScope, Span, Verdict
+from ifccheck.beam import Beam, Model, OutOfScope, Span, Verdict
 from ifccheck.rating import LimitStateRating, Rating, SafeLoad
 
 if TYPE_CHECKING:
@@ -43,6 +43,39 @@ def ratings_frame(
             **_rating_cells(ratings[beam.key]),
             **_state_cells(ratings[beam.key], states),
             **_case_cells(ratings[beam.key], named),
+        }
+        for beam in beams
+    )
+
+
+def run_frame(
+    models: Iterable[tuple[Model, Mapping[str, Rating], Mapping[str, Span]]], cases: Sequence[str]
+) -> pd.DataFrame:
+    """Return the ratings of several models as one table, with the name of each beam's model."""
+    import pandas as pd
+
+    frames = [
+        ratings_frame(model.beams, ratings, spans, cases).assign(model=model.file_name)
+        for model, ratings, spans in models
+    ]
+    return pd.concat(frames, ignore_index=True)
+
+
+def survey_frame(beams: Sequence[Beam], missing: Mapping[str, Sequence[str]]) -> pd.DataFrame:
+    """Return one row per beam: what the model says of it, and what a rating would lack."""
+    return _frame(
+        {
+            "mark": beam.mark,
+            "key": beam.key,
+            "storey": beam.storey,
+            "section": beam.runs[0].outline.name if beam.runs else "",
+            "length_m": _metres(beam.length),
+            "material": beam.material,
+            "concrete_strength_MPa": beam.concrete_strength.value
+            if beam.concrete_strength
+            else math.nan,
+            "reinforcement": ", ".join(each.source for each in beam.reinforcement),
+            "missing": "; ".join(missing.get(beam.key, ())),
         }
         for beam in beams
     )

@@ -239,10 +239,13 @@ def _survey_tail(model: Model, missing: Mapping[str, Sequence[str]]) -> list[Ren
     return tail
 
 
-def standards_table(standards: Iterable[Standard]) -> RenderableType:
-    """Return the standards that a brief can name."""
+def standards_table(standards: Iterable[tuple[str, Standard | str]]) -> RenderableType:
+    """Return the standards that a brief can name, and what is wrong with one that fails."""
     table = _table("standard", "title", "edition", "actions", "shear methods", "checks")
-    for standard in standards:
+    for name, standard in standards:
+        if isinstance(standard, str):
+            table.add_row(_text(name), _text(f"cannot be used: {standard}", style=SHORT))
+            continue
         checks = ", ".join(state.title for state in standard.limit_states)
         methods = ", ".join(standard.shear_methods)
         words = (standard.id, standard.title, standard.edition, standard.actions, methods, checks)

@@ -83,7 +83,7 @@ def _rating(batch: Batch, row: int, standard: Standard, cases: Sequence[Case]) -
 
 def _missing(subject: Subject) -> str:
     """The inputs that no one gives, for a limit state that needs one of them."""
-    unstated = sorted({zone.origin or "the stirrups" for zone in subject.stirrups if not zone.legs})
+    unstated = sorted({z.designation or "no size" for z in subject.stirrups if not z.legs})
     found = []
     if not subject.stirrups_known:
         found.append("no source says whether there are stirrups")
