@@ -324,7 +324,21 @@ def test_no_moment_between_stations_exceeds_that_at_the_turning_places(drawn: li
         for arrangement, sign in ((GREATEST_MOMENT, 1.0), (LEAST_MOMENT, -1.0)):
             best = (ours.moment[:, arrangement, ours.cases.beam == row] * sign).max(axis=1)
             truth = (true.moment[:, arrangement, true.cases.beam == row] * sign).max(axis=1)
-            assert (best >= truth - 2e-4 * size).all()
+            assert (best >= truth - 1e-3 * size).all()
+
+
+def test_a_moment_that_changes_sign_and_back_between_two_stations_is_found() -> None:
+    """Pinned, a load that lifts on the first sixteenth and then presses: hogging near the start
+    only, between a station without moment and one that sags."""
+    drawn: list[Drawn] = [(0, LINE, 0.0, 0.0625, -6.0), (0, LINE, 0.0, 0.125, 3.0)]
+    spans, loads = six_spans(), loads_of(drawn, 6)
+    coarse = combine(case_effects(spans, loads, make_stations(spans, loads, NONE), 3), FACTORS)
+    simple = coarse.cases.beam == 0
+    assert not (coarse.moment[:, LEAST_MOMENT, simple] < 0.0).any()
+    beam, x = turning_places(coarse)
+    stations = make_stations(spans, loads, places(beam, x, two_sided=False))
+    finer = combine(case_effects(spans, loads, stations, 3), FACTORS)
+    assert (finer.moment[:, LEAST_MOMENT, stations.beam == 0] < 0.0).any()
 
 
 def test_rows_are_taken_together() -> None:

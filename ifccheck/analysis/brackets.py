@@ -93,7 +93,10 @@ def _line_terms(
 ) -> Iterator[tuple[int, Floats]]:
     length = loads.end - loads.start
     slope = np.divide(
-        loads.value_end - loads.value_start, length, out=np.zeros_like(length), where=length > 0.0
+        loads.value_end - loads.value_start,
+        length,
+        out=np.zeros_like(length),
+        where=length > SAME_PLACE,
     )
     d, w, k, loaded = distance, loads.value_start[load], slope[load], length[load]
     t = loaded if left is None else np.clip(d, 0.0, loaded)

@@ -274,32 +274,42 @@ def _peaks(cases: CaseEffects, moment: Floats, shear: Floats) -> Floats:
 
 
 def turning_places(effects: Effects) -> tuple[Ints, Floats]:
-    """Places between stations where a combination's greatest or least moment turns.
+    """Places between stations where the moment of a combination, or of a case alone, turns.
 
-    Between two stations the shear of one arrangement is taken as a straight line.
+    Between two stations a case keeps the factor that fits the sum of its moments at both, and
+    the shear is taken as a straight line.
 
     Returns
     -------
     tuple
         Row of the beam and x [mm] of each, to be made stations.
     """
-    found = [_turns(effects, GREATEST_MOMENT, 1.0), _turns(effects, LEAST_MOMENT, -1.0)]
+    alone = np.eye(effects.greater.shape[1])
+    greater = np.concatenate([effects.greater, alone])
+    lesser = np.concatenate([effects.lesser, alone])
+    found = [_turns(effects.cases, greater, lesser, sign) for sign in (1.0, -1.0)]
     beam = np.concatenate([part[0] for part in found])
     x = np.concatenate([part[1] for part in found])
     both = np.unique(np.stack([beam, np.round(x, 3)]), axis=1)
     return both[0].astype(np.intp), both[1]
 
 
-def _turns(effects: Effects, arrangement: int, sign: float) -> tuple[Ints, Floats]:
-    beam, x = effects.cases.beam, effects.cases.x
-    shear = effects.shear[:, arrangement] * sign
-    moment = effects.moment[:, arrangement] * sign
-    gap = np.diff(x)
-    open_ = (beam[1:] == beam[:-1]) & (gap > 1.0)
-    bends = (moment[:, :-1] > 0.0) | (moment[:, 1:] > 0.0)
-    turns = open_ & bends & (shear[:, :-1] > 0.0) & (shear[:, 1:] < 0.0)
-    combination, row = np.nonzero(turns)
-    before, after = shear[combination, row], shear[combination, row + 1]
-    share = before / (before - after)
-    inner = (share > 1e-3) & (share < 1.0 - 1e-3)
-    return beam[row[inner]], (x[row] + share * gap[row])[inner]
+def _turns(cases: CaseEffects, greater: Floats, lesser: Floats, sign: float) -> tuple[Ints, Floats]:
+    """Where the greatest sagging (sign 1) or hogging (sign -1) moment lies within an interval."""
+    gap = np.diff(cases.x)
+    rows = np.flatnonzero((cases.beam[1:] == cases.beam[:-1]) & (gap > 1.0))
+    moment, shear = cases.moment * sign, cases.shear * sign
+    worse = moment[:, rows] + moment[:, rows + 1] > 0.0
+
+    def combined(effect: Floats) -> Floats:
+        return np.asarray(greater @ (effect * worse) + lesser @ (effect * ~worse))
+
+    first, last = combined(shear[:, rows]), combined(shear[:, rows + 1])
+    combination, interval = np.nonzero((first > 0.0) & (last < 0.0))
+    before, after = first[combination, interval], last[combination, interval]
+    start = combined(moment[:, rows])[combination, interval]
+    part, width = before / (before - after), gap[rows[interval]]
+    apex = start + before * part * width / 2.0
+    inner = (part > 1e-3) & (part < 1.0 - 1e-3) & (apex > 0.0)
+    at = rows[interval]
+    return cases.beam[at[inner]], (cases.x[at] + part * width)[inner]

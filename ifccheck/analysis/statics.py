@@ -142,7 +142,7 @@ def _within_spans(spans: SpanTable, loads: LoadTable) -> LoadTable:
 def _intensity(line: LoadTable, x: Floats) -> Floats:
     """Intensity of a trapezoidal line at x [N/mm]."""
     length = line.end - line.start
-    part = np.divide(x - line.start, length, out=np.zeros_like(x), where=length > 0.0)
+    part = np.divide(x - line.start, length, out=np.zeros_like(x), where=length > SAME_PLACE)
     return line.value_start + (line.value_end - line.value_start) * part
 
 
