@@ -21,17 +21,15 @@ from ifccheck.ifc.bar_sizes import (
 )
 from ifccheck.ifc.context import Context
 from ifccheck.ifc.entity import Entity, get, text
+from ifccheck.ifc.materials import Material, Materials
 from ifccheck.ifc.properties import PropertyValue
 
 GRADE_PROPERTIES = frozenset({"grade", "steelgrade", "steel grade"})
 SIZE_PROPERTIES = frozenset({"size", "barsize", "bar size", "diameter", "nominaldiameter"})
 """Names of properties, in lower case, that tell the grade and the size of a bar."""
 YIELD_PROPERTY = "YieldStress"
-INNER_MATERIALS = (
-    "ForProfileSet", "MaterialProfiles", "ForLayerSet", "MaterialLayers", "MaterialConstituents",
-    "Materials", "Material",
-)  # fmt: skip
-"""Attributes through which a material definition holds materials."""
+Texts = tuple[tuple[str, str], ...]
+"""Texts, each with the place that it was found in."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -39,7 +37,7 @@ class _Hints:
     """What property sets of a bar tell."""
 
     sizes: tuple[SizeSource, ...] = ()
-    grades: tuple[tuple[str, str], ...] = ()
+    grades: Texts = ()
 
 
 @dataclass(frozen=True, slots=True)
@@ -77,9 +75,8 @@ class BarData:
         self._context = context
         self._settled: dict[tuple[object, ...], Data] = {}
         self._types: dict[int | None, _Type] = {None: NO_TYPE}
-        self._materials: dict[int | None, tuple[tuple[tuple[str, str], ...], Given | None]] = {
-            None: ((), None)
-        }
+        self._materials = Materials(context)
+        self._material_data: dict[int | None, tuple[Texts, Given | None]] = {}
         self._names: dict[str, str] = {}
 
     def of(self, product: Entity, step_id: int, name: str, swept: float | None) -> Data:
@@ -118,7 +115,8 @@ class BarData:
         name = named or self._named(object_type or "") or self._named(about.name)
         own_role = role if role and role != "NOTDEFINED" else about.role
         size = self._size(diameter, area, about, swept, name, hints)
-        return Data(own_role, size, self._grade(grade, material, hints, about.name, object_type))
+        steel = self._material(material, step_id)
+        return Data(own_role, size, self._grade(grade, steel, hints, about.name, object_type))
 
     def _named(self, name: str) -> str:
         """The bar size in a name."""
@@ -169,9 +167,13 @@ class BarData:
         return by_length if is_area_of_bar(by_length) and not is_area_of_bar(declared) else declared
 
     def _grade(
-        self, grade: str | None, material: int | None, hints: _Hints, *names: str | None
+        self,
+        grade: str | None,
+        material: tuple[Texts, Given | None],
+        hints: _Hints,
+        *names: str | None,
     ) -> int:
-        texts, stated = self._material(material)
+        texts, stated = material
         named = [("name", name) for name in names if name and yield_of_grade(name) is not None]
         sources = [("grade", grade or ""), *hints.grades, *named, *texts]
         return _index(self.grades, settle_grade(sources, stated))
@@ -201,25 +203,22 @@ class BarData:
                     grades.append((source, value.value))
         return _Hints(tuple(sizes), tuple(grades))
 
-    def _material(self, step_id: int | None) -> tuple[tuple[tuple[str, str], ...], Given | None]:
-        if step_id not in self._materials:
-            materials = list(_materials(self._context.file.by_id(step_id)))
-            texts = tuple(("material", text(material, "Name")) for material in materials)
+    def _material(self, step_id: int | None, owner: int) -> tuple[Texts, Given | None]:
+        """Names of the materials of a bar, and the yield strength that they state."""
+        if step_id not in self._material_data:
+            materials = self._materials.of(owner).materials
+            texts = tuple(("material", material.name) for material in materials)
             stated = [given for one in materials for given in self._stated_yields(one)]
-            self._materials[step_id] = (
-                texts,
-                min(stated, key=lambda given: given.value, default=None),
-            )
-        return self._materials[step_id]
+            least = min(stated, key=lambda given: given.value, default=None)
+            self._material_data[step_id] = (texts, least)
+        return self._material_data[step_id]
 
-    def _stated_yields(self, material: Entity) -> Iterator[Given]:
-        for set_name, values in self._context.properties.of_material(material.id()).items():
+    def _stated_yields(self, material: Material) -> Iterator[Given]:
+        for set_name, values in self._context.properties.of_material(material.step_id).items():
             value = values.get(YIELD_PROPERTY)
             number = None if value is None else value.number
             if number is not None and LEAST_YIELD <= number <= GREATEST_YIELD:
-                yield Given(
-                    number, f"material {text(material, 'Name')!r} {set_name}.{YIELD_PROPERTY}"
-                )
+                yield Given(number, f"material {material.name!r} {set_name}.{YIELD_PROPERTY}")
 
 
 def _index(known: list[Any], new: object) -> int:
@@ -242,24 +241,3 @@ def _size_hint(source: str, value: PropertyValue) -> Iterable[SizeSource]:
             yield SizeSource(source, diameter=float(value.value), hint=True)
     elif value.kind == "length" and value.number is not None:
         yield SizeSource(source, diameter=value.number, hint=True)
-
-
-def _materials(definition: Entity) -> Iterator[Entity]:
-    """The materials of a material definition."""
-    if definition.is_a("IfcMaterial"):
-        yield definition
-        return
-    for name in INNER_MATERIALS:
-        for inner in _listed(get(definition, name)):
-            yield from _materials(inner)
-
-
-def _listed(value: Entity | tuple[Entity, ...] | None) -> tuple[Entity, ...]:
-    if value is None:
-        return ()
-    return value if isinstance(value, tuple) else (value,)
-
-
-def materials_of(definition: Entity) -> tuple[Entity, ...]:
-    """Return the materials that a material definition holds."""
-    return tuple(_materials(definition))

@@ -18,11 +18,6 @@ from ifccheck.ifc.described import read_described
 from ifccheck.ifc.entity import Entity, label
 from ifccheck.ifc.physical import Physical, reduce_bars
 
-UNREAD_STEEL = {
-    "IfcReinforcingMesh": "a mesh, which is not read yet",
-    "IfcTendon": "a tendon: prestressed beams are not rated",
-    "IfcTendonAnchor": "the anchor of a tendon: prestressed beams are not rated",
-}
 SECTIONS = "IfcReinforcementDefinitionProperties"
 
 
@@ -72,7 +67,7 @@ def _physical(
     frames = make_frames(hosts)
     findings = Findings(lambda beam: str(context.file.by_id(frames.ids[beam])[0]))
     finder = Hosts(context.file, context.relations, hosts)
-    _tell_unread_steel(context, finder, frames, findings)
+    _tell_meshes(context, finder, frames, findings)
     products, ties = _tied_bars(context, finder)
     table = gather_bars(context, products)
     places = BarPlaces(table, frames)
@@ -110,16 +105,13 @@ def _bars(context: Context) -> Iterator[Entity]:
                     yield product
 
 
-def _tell_unread_steel(
-    context: Context, finder: Hosts, frames: BeamFrames, findings: Findings
-) -> None:
+def _tell_meshes(context: Context, finder: Hosts, frames: BeamFrames, findings: Findings) -> None:
     index = frames.index()
-    for name, what in UNREAD_STEEL.items():
-        for entity in _instances(context, name):
-            host = finder.of(entity.id())
-            if host.tie == "part" or len(host.beams) == 1:
-                for beam in host.beams:
-                    findings.reason(index[beam], f"{label(entity)} is {what}")
+    for entity in _instances(context, "IfcReinforcingMesh"):
+        host = finder.of(entity.id())
+        if host.tie == "part" or len(host.beams) == 1:
+            for beam in host.beams:
+                findings.reason(index[beam], f"{label(entity)}: a mesh is not read yet")
 
 
 def _tell_unreadable(

@@ -1,0 +1,491 @@
+"""Longitudinal bars read from bodies: places, ends, hooks, layers, units and turned beams.
+
+What is expected is written out from the geometry that each test draws. The standard hooks are
+those of CSA A23.1 and CSA A23.3-14, from memory: 90 degrees with 12 diameters, 180 degrees with
+4 diameters and at least 60 mm of straight extension.
+"""
+
+from __future__ import annotations
+
+import math
+
+import ifcopenshell
+import numpy as np
+import pytest
+
+from ifccheck.beam import Anchor
+from ifccheck.ifc.bar_paths import Path, path_length, sample
+from tests.barred_beams import HEIGHT, LENGTH, Curve, ModelWithBars, bent, straight
+
+# CSA G30.18: nominal diameter [mm] and area [mm2], published
+CSA_BARS = {
+    "10M": (11.3, 100.0),
+    "15M": (16.0, 200.0),
+    "20M": (19.5, 300.0),
+    "25M": (25.2, 500.0),
+    "30M": (29.9, 700.0),
+    "35M": (35.7, 1000.0),
+    "45M": (43.7, 1500.0),
+    "55M": (56.4, 2500.0),
+}
+
+
+@pytest.mark.parametrize(("name", "diameter", "area"), [(k, *v) for k, v in CSA_BARS.items()])
+def test_a_named_metric_bar_has_the_area_of_the_standard(
+    name: str, diameter: float, area: float
+) -> None:
+    model = ModelWithBars()
+    beam = model.beam()
+    model.bars(beam, straight(50, 5950, 0, 100), diameter=diameter, Name=f"bottom {name}")
+    (bars,) = model.read(beam).bars
+    assert (bars.area, bars.diameter, bars.designation) == (area, diameter, name)
+
+
+def test_equal_bars_of_a_layer_are_one_group_from_right_to_left() -> None:
+    model = ModelWithBars()
+    beam = model.beam()
+    curves = [straight(40, 5960, y, 60) for y in (90.0, -90.0, 0.0)]
+    model.bars(beam, *curves, diameter=20.0, SteelGrade="400W")
+    (bars,) = model.read(beam).bars
+    assert bars.count == 3
+    assert bars.ys == pytest.approx((-90.0, 0.0, 90.0))
+    assert (bars.start, bars.end, bars.z) == pytest.approx((40.0, 5960.0, 60.0))
+    assert bars.area == pytest.approx(math.pi * 100.0)
+    assert (bars.start_anchor, bars.end_anchor) == (Anchor.STRAIGHT, Anchor.STRAIGHT)
+    assert bars.yield_strength is not None
+    assert bars.yield_strength.value == 400.0
+    assert model.read(beam).reasons == ""
+
+
+def test_a_bar_drawn_from_the_end_to_the_start_is_the_same() -> None:
+    model = ModelWithBars()
+    beam = model.beam()
+    tail = [(5900.0, 0.0, 320.0), (5900.0, 0.0, 60.0), (100.0, 0.0, 60.0)]
+    model.bars(beam, bent(tail, 56.0), bent(tail[::-1], 56.0))
+    first, second = model.file.by_type("IfcReinforcingBar")
+    (bars,) = model.read(beam).bars
+    assert bars.count == 1
+    assert "modelled twice" in model.read(beam).remarks
+    assert f"#{first.id()}" in model.read(beam).remarks
+    assert f"#{second.id()}" in model.read(beam).remarks
+    assert (bars.start_anchor, bars.end_anchor) == (Anchor.STRAIGHT, Anchor.HOOK)
+    assert (bars.start, bars.end) == pytest.approx((100.0, 5900.0 + 8.0))
+
+
+def square_hook(diameter: float, extension: float) -> Curve:
+    """A bar at 60 mm with a 90 degree hook up at its start, 100 mm from the beam's end."""
+    radius = 3.6 * diameter
+    tail = 60.0 + radius + extension
+    return bent([(100.0, 0.0, tail), (100.0, 0.0, 60.0), (5900.0, 0.0, 60.0)], radius)
+
+
+def test_a_square_hook_of_twelve_diameters_is_standard() -> None:
+    model = ModelWithBars()
+    beam = model.beam()
+    model.bars(beam, square_hook(20.0, 12.0 * 20.0), diameter=20.0)
+    (bars,) = model.read(beam).bars
+    assert (bars.start_anchor, bars.end_anchor) == (Anchor.HOOK, Anchor.STRAIGHT)
+    assert bars.start == pytest.approx(100.0 - 10.0)  # the outside of the hook
+    assert bars.end == pytest.approx(5900.0)
+    assert bars.z == pytest.approx(60.0)
+
+
+def test_a_square_hook_short_of_twelve_diameters_ends_straight_before_its_bend() -> None:
+    model = ModelWithBars()
+    beam = model.beam()
+    model.bars(beam, square_hook(20.0, 11.5 * 20.0), diameter=20.0)
+    found = model.read(beam)
+    (bars,) = found.bars
+    assert bars.start_anchor is Anchor.STRAIGHT
+    assert bars.start == pytest.approx(100.0 + 3.6 * 20.0)
+    assert "short of a standard hook" in found.remarks
+
+
+def full_hook(diameter: float, extension: float) -> Curve:
+    """A bar at 60 mm whose start turns back by 180 degrees above it."""
+    r = 3.6 * diameter
+    start = 150.0
+    points = (
+        (start + extension, 0.0, 60.0 + 2.0 * r),
+        (start, 0.0, 60.0 + 2.0 * r),
+        (start - r, 0.0, 60.0 + r),
+        (start, 0.0, 60.0),
+        (5900.0, 0.0, 60.0),
+    )
+    return Curve(points, (1,))
+
+
+@pytest.mark.parametrize(
+    ("diameter", "extension", "anchor"),
+    [
+        (10.0, 60.0, Anchor.HOOK),  # the least of 60 mm governs
+        (10.0, 45.0, Anchor.STRAIGHT),  # more than 4 diameters, less than 60 mm
+        (25.0, 100.0, Anchor.HOOK),
+        (25.0, 90.0, Anchor.STRAIGHT),
+    ],
+)
+def test_a_full_hook_needs_four_diameters_and_sixty_millimetres(
+    diameter: float, extension: float, anchor: Anchor
+) -> None:
+    model = ModelWithBars()
+    beam = model.beam()
+    model.bars(beam, full_hook(diameter, extension), diameter=diameter)
+    (bars,) = model.read(beam).bars
+    assert bars.start_anchor is anchor
+    outside = 150.0 - 3.6 * diameter - diameter / 2.0
+    assert bars.start == pytest.approx(outside if anchor is Anchor.HOOK else 150.0)
+    assert bars.z == pytest.approx(60.0)
+
+
+@pytest.mark.parametrize(("tail", "anchor"), [(12.0, Anchor.STRAIGHT), (15.7, Anchor.HOOK)])
+def test_a_corner_drawn_sharp_gives_its_bend_from_the_tail(tail: float, anchor: Anchor) -> None:
+    model = ModelWithBars()
+    beam = model.beam()
+    sharp = Curve(((100.0, 0.0, 60.0 + tail * 20.0), (100.0, 0.0, 60.0), (5900.0, 0.0, 60.0)))
+    model.bars(beam, sharp, diameter=20.0)
+    (bars,) = model.read(beam).bars
+    assert bars.start_anchor is anchor
+
+
+def test_the_legs_of_a_hairpin_hook_round_each_other() -> None:
+    model = ModelWithBars()
+    beam = model.beam()
+    hairpin = bent(
+        [(1500.0, -90.0, 300.0), (60.0, -90.0, 300.0), (60.0, 90.0, 300.0), (1500.0, 90.0, 300.0)],
+        40.0,
+    )
+    model.bars(beam, hairpin, diameter=12.0)
+    (bars,) = model.read(beam).bars
+    assert bars.count == 2
+    assert bars.ys == pytest.approx((-90.0, 90.0))
+    assert (bars.start_anchor, bars.end_anchor) == (Anchor.HOOK, Anchor.STRAIGHT)
+    assert (bars.start, bars.end) == pytest.approx((54.0, 1500.0))
+
+
+def test_layers_and_curtailed_bars_stay_apart() -> None:
+    model = ModelWithBars()
+    beam = model.beam()
+    lower = [straight(40, 5960, y, 60) for y in (-90.0, 0.0, 90.0)]
+    upper = [straight(1500, 4500, y, 110) for y in (-90.0, 90.0)]
+    top = [straight(40, 5960, y, 540) for y in (-90.0, 90.0)]
+    support = [straight(40, 1800, 0, 540)]
+    model.bars(beam, *lower, *upper, *top, *support, diameter=20.0)
+    bars = model.read(beam).bars
+    assert [(b.count, b.z, b.start, b.end) for b in bars] == [
+        (3, 60.0, 40.0, 5960.0),
+        (2, 110.0, 1500.0, 4500.0),
+        (1, 540.0, 40.0, 1800.0),
+        (2, 540.0, 40.0, 5960.0),
+    ]
+
+
+def test_bars_within_a_millimetre_share_a_layer_and_the_shortest_counts() -> None:
+    model = ModelWithBars()
+    beam = model.beam()
+    model.bars(beam, straight(40, 5960, -90, 60.0), straight(43, 5957, 90, 60.8))
+    (bars,) = model.read(beam).bars
+    assert (bars.count, bars.start, bars.end) == (2, 43.0, 5957.0)
+    assert bars.z == pytest.approx(60.4)
+
+
+def test_bent_up_parts_are_not_counted_and_said() -> None:
+    model = ModelWithBars()
+    beam = model.beam()
+    corners = [(50, 0, 540), (1000, 0, 540), (1480, 0, 60), (4520, 0, 60), (5000, 0, 540)]
+    model.bars(beam, bent([*corners, (5950, 0, 540)], 80.0), diameter=20.0)
+    found = model.read(beam)
+    cut = 80.0 * math.tan(math.radians(22.5))  # where the bend of 45 degrees begins
+    assert [(b.z, b.start, b.end) for b in found.bars] == [
+        pytest.approx((60.0, 1480.0 + cut, 4520.0 - cut)),
+        pytest.approx((540.0, 50.0, 1000.0 - cut)),
+        pytest.approx((540.0, 5000.0 + cut, 5950.0)),
+    ]
+    assert all(b.start_anchor is b.end_anchor is Anchor.STRAIGHT for b in found.bars)
+    assert "inclined parts are not counted" in found.remarks
+    assert found.reasons == ""
+
+
+def test_a_bar_that_slopes_is_taken_where_it_does_least() -> None:
+    model = ModelWithBars()
+    beam = model.beam()
+    low = Curve(((50.0, 0.0, 60.0), (5950.0, 0.0, 100.0)))
+    high = Curve(((50.0, 50.0, 550.0), (5950.0, 50.0, 500.0)))
+    model.bars(beam, low, high)
+    found = model.read(beam)
+    assert [b.z for b in found.bars] == pytest.approx([100.0, 500.0])
+    assert "slopes" in found.remarks
+
+
+def test_a_bar_through_the_middle_is_not_counted() -> None:
+    model = ModelWithBars()
+    beam = model.beam()
+    model.bars(beam, Curve(((50.0, 0.0, 220.0), (5950.0, 0.0, 380.0))), straight(50, 5950, 0, 60))
+    found = model.read(beam)
+    assert [b.z for b in found.bars] == pytest.approx([60.0])
+    assert "crosses the middle" in found.remarks
+
+
+def test_a_skewed_bar_keeps_the_beam_from_being_rated() -> None:
+    model = ModelWithBars()
+    beam = model.beam()
+    model.bars(beam, Curve(((50.0, -100.0, 60.0), (2050.0, 100.0, 60.0))))
+    found = model.read(beam)
+    assert "neither along the beam nor square to it: not read" in found.reasons
+    assert found.bars == ()
+
+
+def test_a_curved_bar_keeps_the_beam_from_being_rated() -> None:
+    model = ModelWithBars()
+    beam = model.beam()
+    model.bars(beam, Curve(((50.0, 0.0, 400.0), (3000.0, 0.0, 60.0), (5950.0, 0.0, 400.0)), (0,)))
+    assert "not read" in model.read(beam).reasons
+
+
+@pytest.mark.parametrize(
+    ("y", "z", "fits"),
+    [
+        (0.0, 60.0, True),
+        (0.0, 7.5, True),
+        (0.0, 6.0, False),
+        (144.0, 60.0, False),
+        (0.0, 596.0, False),
+    ],
+)
+def test_steel_outside_the_concrete_is_a_reason(y: float, z: float, fits: bool) -> None:
+    model = ModelWithBars()
+    beam = model.beam()
+    model.bars(beam, straight(50, 5950, y, z), diameter=16.0)
+    assert ("outside the concrete" in model.read(beam).reasons) is not fits
+
+
+def test_bars_may_run_on_into_the_supports() -> None:
+    model = ModelWithBars()
+    beam = model.beam()
+    model.bars(beam, straight(-300, 6400, 0, 60))
+    (bars,) = model.read(beam).bars
+    assert (bars.start, bars.end) == pytest.approx((-300.0, LENGTH + 400.0))
+    assert model.read(beam).reasons == ""
+
+
+@pytest.mark.parametrize("unit", ["mm", "m", "in"])
+@pytest.mark.parametrize("schema", ["IFC2X3", "IFC4", "IFC4X3"])
+def test_units_and_schemas_give_the_same_bars(unit: str, schema: str) -> None:
+    model = ModelWithBars(schema, unit)
+    beam = model.beam(origin=(5000.0, -2000.0, 3000.0))
+    sharp = Curve(((100.0, 0.0, 500.0), (100.0, 0.0, 60.0), (5900.0, 0.0, 60.0)))
+    model.bars(beam, sharp, diameter=25.0)
+    (bars,) = model.read(beam).bars
+    assert (bars.diameter, bars.area) == pytest.approx((25.0, math.pi * 25.0**2 / 4.0))
+    assert (bars.start, bars.end, bars.z) == pytest.approx((87.5, 5900.0, 60.0))
+    assert (bars.start_anchor, bars.end_anchor) == (Anchor.HOOK, Anchor.STRAIGHT)
+
+
+@pytest.mark.parametrize(
+    "along",
+    [(0.0, 1.0, 0.0), (-1.0, 0.0, 0.0), (3.0, 4.0, 0.0), (4.0, -1.0, 0.5), (1.0, 1.0, -1.0)],
+)
+def test_turned_and_sloped_beams_hold_the_same_bars(along: tuple[float, float, float]) -> None:
+    """The bars are drawn in the building, by the beam's own axes worked out here."""
+    model = ModelWithBars(unit="m")
+    origin = (12000.0, 7000.0, 4000.0)
+    beam = model.beam(origin, along)
+    x = np.array(along) / np.linalg.norm(along)
+    y = np.array((-x[1], x[0], 0.0)) / math.hypot(x[0], x[1])
+    z = np.array((-x[2] * y[1], x[2] * y[0], x[0] * y[1] - x[1] * y[0]))
+    local = bent([(100.0, 40.0, 60.0), (5900.0, 40.0, 60.0), (5900.0, 40.0, 500.0)], 72.0)
+    world = tuple(tuple(np.array(origin) + a * x + b * y + c * z) for a, b, c in local.points)
+    bar = model.bar(Curve(world, local.arcs), 20.0, world=True)
+    model.aggregate(beam, [bar])
+    (bars,) = model.read(beam).bars
+    assert (bars.start, bars.end, bars.z) == pytest.approx((100.0, 5910.0, 60.0))
+    assert bars.ys == pytest.approx((40.0,))
+    assert bars.end_anchor is Anchor.HOOK
+
+
+def test_one_mapped_entity_may_be_many_bars() -> None:
+    model = ModelWithBars()
+    beam = model.beam()
+    solid = model.swept(straight(0, 5900, 0, 0), 20.0)
+    items = model.mapped(solid, [(50.0, y, 60.0) for y in (-100.0, -50.0, 0.0, 50.0, 100.0)])
+    model.aggregate(beam, [model.bar(items, 20.0, beam)])
+    (bars,) = model.read(beam).bars
+    assert bars.count == 5
+    assert bars.ys == pytest.approx((-100.0, -50.0, 0.0, 50.0, 100.0))
+    assert (bars.start, bars.end) == pytest.approx((50.0, 5950.0))
+
+
+def test_a_mapped_bar_may_be_turned() -> None:
+    model = ModelWithBars("IFC4", "in")
+    beam = model.beam()
+    solid = model.swept(Curve(((0.0, 0.0, 0.0), (0.0, 0.0, 5900.0))), 20.0)
+    (item,) = model.mapped(solid, [(50.0, 30.0, 60.0)])
+    target = item.MappingTarget
+    target.Axis1, target.Axis2, target.Axis3 = (
+        model.direction((0, 1, 0)),
+        model.direction((0, 0, 1)),
+        model.direction((1, 0, 0)),
+    )
+    model.aggregate(beam, [model.bar([item], 20.0, beam)])
+    (bars,) = model.read(beam).bars
+    assert (bars.start, bars.end, bars.z) == pytest.approx((50.0, 5950.0, 60.0))
+    assert bars.ys == pytest.approx((30.0,))
+
+
+def test_an_extruded_circle_is_a_straight_bar() -> None:
+    model = ModelWithBars(unit="m")
+    beam = model.beam()
+    create = model.file.create_entity
+    profile = create("IfcCircleProfileDef", "AREA", None, None, 10.0 * model.scale)
+    axes = create(
+        "IfcAxis2Placement3D",
+        model.point((40.0, -70.0, 65.0)),
+        model.direction((1, 0, 0)),
+        model.direction((0, 1, 0)),
+    )
+    up = model.direction((0, 0, 1))
+    solid = create("IfcExtrudedAreaSolid", profile, axes, up, 5920.0 * model.scale)
+    model.aggregate(beam, [model.bar([solid], None, beam)])
+    (bars,) = model.read(beam).bars
+    assert (bars.start, bars.end, bars.z) == pytest.approx((40.0, 5960.0, 65.0))
+    assert bars.ys == pytest.approx((-70.0,))
+    assert (bars.diameter, bars.area) == pytest.approx((20.0, 100.0 * math.pi))
+
+
+@pytest.mark.parametrize("degrees", [False, True])
+def test_composite_curves_of_trimmed_lines_and_circles(degrees: bool) -> None:
+    model = ModelWithBars("IFC2X3")
+    create = model.file.create_entity
+    if degrees:
+        exponents = create("IfcDimensionalExponents", 0, 0, 0, 0, 0, 0, 0)
+        radian = create("IfcSIUnit", UnitType="PLANEANGLEUNIT", Name="RADIAN")
+        value = create("IfcPlaneAngleMeasure", math.pi / 180.0)
+        factor = create("IfcMeasureWithUnit", value, radian)
+        unit = create("IfcConversionBasedUnit", exponents, "PLANEANGLEUNIT", "DEGREE", factor)
+        assignment = model.file.by_type("IfcUnitAssignment")[0]
+        assignment.Units = (*assignment.Units, unit)
+    beam = model.beam()
+    quarter = 90.0 if degrees else math.pi / 2.0
+    r = 80.0
+    level = trimmed_line(model, (100.0, 0.0, 60.0), (1.0, 0.0, 0.0), 5700.0)
+    centre = create(
+        "IfcAxis2Placement3D",
+        model.point((5800.0, 0.0, 60.0 + r)),
+        model.direction((0, 1, 0)),
+        model.direction((0, 0, -1)),
+    )
+    circle = create("IfcCircle", centre, r)
+    # about y an angle turns from -z towards -x, so the bend to +x runs backwards
+    bend = create(
+        "IfcTrimmedCurve",
+        circle,
+        [create("IfcParameterValue", 0.0)],
+        [create("IfcParameterValue", -quarter)],
+        False,
+        "PARAMETER",
+    )
+    upright = trimmed_line(model, (5800.0 + r, 0.0, 60.0 + r), (0.0, 0.0, 1.0), 300.0)
+    segments = [
+        create("IfcCompositeCurveSegment", "CONTINUOUS", True, part)
+        for part in (level, bend, upright)
+    ]
+    curve = create("IfcCompositeCurve", segments, False)
+    length = 5700.0 + quarter + 300.0
+    solid = create("IfcSweptDiskSolid", curve, 10.0, None, 0.0, length)
+    model.aggregate(beam, [model.bar([solid], 20.0, beam)])
+    (bars,) = model.read(beam).bars
+    assert (bars.start, bars.end, bars.z) == pytest.approx((100.0, 5890.0, 60.0))
+    assert bars.end_anchor is Anchor.HOOK
+
+
+def trimmed_line(
+    model: ModelWithBars,
+    start: tuple[float, float, float],
+    along: tuple[float, float, float],
+    length: float,
+) -> ifcopenshell.entity_instance:
+    create = model.file.create_entity
+    vector = create("IfcVector", model.direction(along), 1.0)
+    line = create("IfcLine", model.point(start), vector)
+    first, last = (create("IfcParameterValue", value) for value in (0.0, length))
+    return create("IfcTrimmedCurve", line, [first], [last], True, "PARAMETER")
+
+
+def test_a_solid_swept_over_a_part_of_a_polyline() -> None:
+    model = ModelWithBars("IFC2X3")
+    beam = model.beam()
+    line = model.curve(Curve(((0.0, 0.0, 60.0), (2000.0, 0.0, 60.0), (6000.0, 0.0, 60.0))))
+    solid = model.file.create_entity("IfcSweptDiskSolid", line, 8.0, None, 0.5, 1.75)
+    model.aggregate(beam, [model.bar([solid], 16.0, beam)])
+    (bars,) = model.read(beam).bars
+    assert (bars.start, bars.end) == pytest.approx((1000.0, 5000.0))
+
+
+def test_a_solid_swept_over_an_unclear_part_is_a_reason() -> None:
+    model = ModelWithBars("IFC2X3")
+    beam = model.beam()
+    line = model.curve(straight(0, 6000, 0, 60))
+    solid = model.file.create_entity("IfcSweptDiskSolid", line, 8.0, None, 0.0, 3000.0)
+    model.aggregate(beam, [model.bar([solid], 16.0, beam)])
+    assert "beyond its ends" in model.read(beam).reasons
+
+
+def test_a_bar_of_faces_is_a_reason_and_its_axis_helps() -> None:
+    model = ModelWithBars()
+    beam = model.beam()
+    create = model.file.create_entity
+    shell = create("IfcClosedShell", [])
+    brep = create("IfcFacetedBrep", shell)
+    bar = model.bar([brep], 16.0, beam)
+    model.aggregate(beam, [bar])
+    found = model.read(beam)
+    assert "IfcFacetedBrep, which is not read yet" in found.reasons
+    assert f"#{bar.id()}" in found.reasons
+    axis = model.representation([model.curve(straight(50, 5950, 0, 60))], "Axis")
+    bar.Representation.Representations = (*bar.Representation.Representations, axis)
+    (bars,) = model.read(beam).bars
+    assert (bars.start, bars.end, bars.diameter) == pytest.approx((50.0, 5950.0, 16.0))
+
+
+def test_a_bar_that_is_both_stretched_and_mapped_is_a_reason() -> None:
+    model = ModelWithBars()
+    beam = model.beam()
+    (item,) = model.mapped(model.swept(straight(0, 1000, 0, 60), 16.0), [(0.0, 0.0, 0.0)])
+    origin = model.point((0.0, 0.0, 0.0))
+    item.MappingTarget = model.file.create_entity(
+        "IfcCartesianTransformationOperator3DnonUniform", None, None, origin, 5.0, None, 1.0, 1.0
+    )
+    model.aggregate(beam, [model.bar([item], 16.0, beam)])
+    assert "stretch" in model.read(beam).reasons
+
+
+def test_stirrups_alone_do_not_make_a_reinforced_beam() -> None:
+    model = ModelWithBars()
+    beam = model.beam()
+    model.bars(beam, *(Curve(((x, -100.0, 60.0), (x, 100.0, 60.0))) for x in (100.0, 200.0)))
+    assert "no longitudinal bar" in model.read(beam).reasons
+
+
+def test_shape_decides_over_role() -> None:
+    model = ModelWithBars()
+    beam = model.beam()
+    model.bars(beam, straight(50, 5950, 0, 60), PredefinedType="LIGATURE")
+    found = model.read(beam)
+    assert found.bars[0].count == 1
+    assert "by its role" in found.remarks
+
+
+def test_arcs_are_sampled_on_their_circle() -> None:
+    half_circle = Path(((50.0, 0.0, 0.0), (0.0, 50.0, 0.0), (-50.0, 0.0, 0.0)), (0,))
+    points = sample((half_circle,)).points
+    assert np.hypot(points[:, 0], points[:, 1]) == pytest.approx(50.0)
+    assert path_length(half_circle) == pytest.approx(50.0 * math.pi)
+    turned = np.degrees(np.unwrap(np.arctan2(points[:, 1], points[:, 0])))
+    assert (np.diff(turned) > 0.0).all()
+    assert np.diff(turned).max() <= 180.0 / 7.0 + 1e-9
+
+
+def test_heights_are_measured_from_the_soffit() -> None:
+    model = ModelWithBars()
+    beam = model.beam(origin=(0.0, 0.0, 9000.0))
+    model.bars(beam, straight(50, 5950, 0, HEIGHT - 60.0))
+    assert model.read(beam).bars[0].z == pytest.approx(540.0)

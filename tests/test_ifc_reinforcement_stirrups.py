@@ -1,0 +1,338 @@
+"""Stirrups read from bodies: legs, zones of one spacing, what does not count.
+
+What is expected is written out from the geometry that each test draws.
+"""
+
+from __future__ import annotations
+
+import math
+from itertools import pairwise
+
+import numpy as np
+import pytest
+from hypothesis import given, settings
+from hypothesis import strategies as st
+
+from ifccheck.ifc.stirrup_sets import Place, zones_of_one_spacing
+from tests.barred_beams import (
+    LENGTH,
+    Curve,
+    Found,
+    ModelWithBars,
+    bent,
+    closed_stirrup,
+    hooked_stirrup,
+    straight,
+)
+
+TEN = math.pi * 100.0 / 4.0
+
+
+def read_stirrups(*curves: Curve, diameter: float = 10.0, **attributes: str) -> Found:
+    model = ModelWithBars()
+    beam = model.beam()
+    model.bars(beam, straight(40, 5960, 0, 60), diameter=20.0)
+    model.bars(beam, *curves, diameter=diameter, **attributes)
+    return model.read(beam)
+
+
+def at(places: list[float]) -> list[Curve]:
+    return [closed_stirrup(x, 110.0, 40.0, 560.0) for x in places]
+
+
+def spans(found: Found) -> list[tuple[float, float, float]]:
+    return [(s.start, s.end, s.spacing) for s in found.stirrups]
+
+
+def test_equal_stirrups_make_one_zone_over_the_whole_beam() -> None:
+    found = read_stirrups(*at([50.0 + 200.0 * k for k in range(30)]), SteelGrade="B500B")
+    (zone,) = found.stirrups
+    assert (zone.start, zone.end, zone.spacing) == pytest.approx((0.0, LENGTH, 200.0))
+    assert (zone.legs, zone.closed) == (2, True)
+    assert (zone.diameter, zone.leg_area) == pytest.approx((10.0, TEN))
+    assert (zone.bottom, zone.top, zone.half_width) == pytest.approx((35.0, 565.0, 115.0))
+    assert zone.yield_strength is not None
+    assert zone.yield_strength.value == 500.0
+    assert found.reasons == ""
+
+
+def test_closer_stirrups_at_the_ends_make_zones_of_their_own() -> None:
+    left = [50.0 + 100.0 * k for k in range(11)]  # 50 to 1050
+    middle = [1050.0 + 300.0 * k for k in range(1, 13)]  # 1350 to 4650, and on to 4950
+    middle = [x for x in middle if x < 4950.0]
+    right = [4950.0 + 100.0 * k for k in range(11)]  # 4950 to 5950
+    found = read_stirrups(*at([*left, *middle, *right]))
+    assert spans(found) == [
+        pytest.approx((0.0, 1050.0, 100.0)),
+        pytest.approx((1050.0, 4950.0, 300.0)),
+        pytest.approx((4950.0, 6000.0, 100.0)),
+    ]
+
+
+def test_the_greatest_gap_of_a_zone_is_its_spacing() -> None:
+    found = read_stirrups(*at([100.0, 300.0, 497.0, 694.0, 897.0, 1097.0]))
+    assert spans(found)[0] == pytest.approx((0.0, 1097.0 + 101.5, 203.0))
+
+
+def test_zones_end_half_a_spacing_beyond_stirrups_that_do_not_reach_the_end() -> None:
+    found = read_stirrups(*at([1000.0, 1200.0, 1400.0]))
+    assert spans(found) == [pytest.approx((900.0, 1500.0, 200.0))]
+
+
+def test_a_wide_gap_is_a_zone_of_its_own_spacing() -> None:
+    found = read_stirrups(*at([100.0, 300.0, 500.0, 1100.0, 1300.0, 1500.0]))
+    assert spans(found) == [
+        pytest.approx((0.0, 500.0, 200.0)),
+        pytest.approx((500.0, 1100.0, 600.0)),
+        pytest.approx((1100.0, 1600.0, 200.0)),
+    ]
+
+
+def test_two_stirrups_close_together_do_not_make_a_close_zone() -> None:
+    found = read_stirrups(*at([100.0, 300.0, 500.0, 550.0, 750.0, 950.0]))
+    assert all(spacing == pytest.approx(200.0) for _, _, spacing in spans(found))
+
+
+def test_a_single_stirrup_does_not_count() -> None:
+    found = read_stirrups(*at([3000.0]))
+    assert found.stirrups == ()
+    assert "the only stirrup" in found.remarks
+
+
+def test_stirrups_modelled_twice_count_once() -> None:
+    found = read_stirrups(*at([100.0, 300.0, 500.0, 100.0, 300.0, 500.0]))
+    assert [zone.legs for zone in found.stirrups] == [2]
+    assert "modelled twice" in found.remarks
+
+
+@pytest.mark.parametrize("offset", [0.0, 3.0, 12.0])
+def test_nested_stirrups_add_their_legs(offset: float) -> None:
+    outer = at([100.0, 300.0, 500.0])
+    inner = [closed_stirrup(x + offset, 40.0, 40.0, 560.0) for x in (100.0, 300.0, 500.0)]
+    found = read_stirrups(*outer, *inner)
+    assert [zone.legs for zone in found.stirrups] == [4]
+    (zone,) = found.stirrups
+    assert zone.leg_area == pytest.approx(TEN)
+    assert zone.spacing == pytest.approx(200.0)
+
+
+def cross_tie(x: float, y: float) -> Curve:
+    """A single leg with a 180 degree hook at each end."""
+    points = [(x, y + 40, 500), (x, y + 40, 550), (x, y, 550), (x, y, 50), (x, y + 40, 50)]
+    return bent([*points, (x, y + 40, 100)], 15.0)
+
+
+def test_a_single_leg_between_stirrup_legs_counts_one() -> None:
+    places = [100.0, 300.0, 500.0]
+    found = read_stirrups(*at(places), *(cross_tie(x, 0.0) for x in places))
+    assert [zone.legs for zone in found.stirrups] == [3]
+
+
+def test_stirrups_of_two_diameters_add_their_areas() -> None:
+    model = ModelWithBars()
+    beam = model.beam()
+    model.bars(beam, straight(40, 5960, 0, 60), diameter=20.0)
+    places = (100.0, 300.0, 500.0)
+    model.bars(beam, *(closed_stirrup(x, 110, 40, 560) for x in places), diameter=12.0)
+    model.bars(beam, *(closed_stirrup(x, 40, 40, 560) for x in places), diameter=8.0)
+    (zone,) = model.read(beam).stirrups
+    assert zone.legs == 4
+    total = 2.0 * math.pi * 12.0**2 / 4.0 + 2.0 * math.pi * 8.0**2 / 4.0
+    assert zone.legs * zone.leg_area == pytest.approx(total)
+
+
+def test_zones_change_where_the_legs_change_and_the_gap_between_has_the_lesser() -> None:
+    places = [100.0 + 200.0 * k for k in range(10)]  # 100 to 1900
+    inner = [closed_stirrup(x, 40.0, 40.0, 560.0) for x in places[:4]]
+    found = read_stirrups(*at(places), *inner)
+    assert [(z.start, z.end, z.legs) for z in found.stirrups] == [
+        pytest.approx((0.0, 700.0, 4)),
+        pytest.approx((700.0, 2000.0, 2)),
+    ]
+
+
+def open_stirrup(x: float, up: float, hook: float) -> Curve:
+    """A U that is open at the top, its ends hooked inwards where ``hook`` is not 0."""
+    legs = [(x, 110.0, up), (x, 110.0, 40.0), (x, -110.0, 40.0), (x, -110.0, up)]
+    if hook:
+        legs = [(x, 110.0 - hook, up), *legs, (x, -110.0 + hook, up)]
+    return bent(legs, 25.0)
+
+
+def test_an_open_stirrup_with_hooks_has_two_legs() -> None:
+    found = read_stirrups(*(open_stirrup(x, 560.0, 85.0) for x in (100.0, 300.0, 500.0)))
+    assert [(zone.legs, zone.closed) for zone in found.stirrups] == [(2, False)]
+
+
+def test_legs_that_end_without_a_hook_do_not_count() -> None:
+    found = read_stirrups(*(open_stirrup(x, 560.0, 0.0) for x in (100.0, 300.0, 500.0)))
+    assert found.stirrups == ()
+    assert "no leg crosses the height" in found.remarks
+
+
+def test_legs_that_lap_are_not_counted_twice() -> None:
+    """A U from below and a cap from above lap over the middle of the height."""
+    places = (100.0, 300.0, 500.0)
+    below = [open_stirrup(x, 400.0, 85.0) for x in places]
+    above = [
+        Curve(tuple((x, y, 600.0 - z) for x, y, z in curve.points), curve.arcs) for curve in below
+    ]
+    found = read_stirrups(*below, *above)
+    assert [zone.legs for zone in found.stirrups] == [2]
+
+
+def test_stirrups_of_part_of_the_height_do_not_count() -> None:
+    found = read_stirrups(*(closed_stirrup(x, 110.0, 40.0, 400.0) for x in (100.0, 300.0, 500.0)))
+    assert found.stirrups == ()
+    assert "do not run through the height" in found.remarks
+
+
+def test_ties_that_cross_only_the_width_do_not_count() -> None:
+    found = read_stirrups(
+        *(Curve(((x, -110.0, 300.0), (x, 110.0, 300.0))) for x in (100.0, 300.0, 500.0))
+    )
+    assert found.stirrups == ()
+    assert "not counted in shear" in found.remarks
+
+
+def test_diagonal_ties_do_not_count() -> None:
+    found = read_stirrups(
+        *(
+            bent([(x, 110, 100), (x, 110, 40), (x, -110, 560), (x, -110, 500)], 12)
+            for x in (1e3, 2e3)
+        )
+    )
+    assert found.stirrups == ()
+
+
+def test_inclined_stirrups_are_not_counted_and_said() -> None:
+    ring = [(0.0, 110.0, 40.0), (520.0, 110.0, 560.0), (520.0, -110.0, 560.0), (0.0, -110.0, 40.0)]
+    leaning = [Curve((*((x + a, b, c) for a, b, c in ring), (x, 110.0, 40.0))) for x in (1e3, 2e3)]
+    found = read_stirrups(*leaning)
+    assert found.stirrups == ()
+    assert "inclined, not counted" in found.remarks
+
+
+def test_hooks_round_one_corner_close_a_stirrup() -> None:
+    found = read_stirrups(*(hooked_stirrup(x, 110, 40, 560, 80) for x in (100.0, 300.0, 500.0)))
+    assert [(zone.legs, zone.closed) for zone in found.stirrups] == [(2, True)]
+
+
+def test_stirrups_beyond_the_end_do_not_count() -> None:
+    found = read_stirrups(*at([-200.0, 0.0, 200.0, 400.0]))
+    assert spans(found) == [pytest.approx((0.0, 500.0, 200.0))]
+    assert "beyond the end" in found.remarks
+
+
+def test_stirrups_outside_the_concrete_are_a_reason() -> None:
+    found = read_stirrups(*(closed_stirrup(x, 110.0, 40.0, 700.0) for x in (100.0, 300.0)))
+    assert "outside the concrete" in found.reasons
+
+
+def test_the_lowest_strength_of_stirrups_at_one_place_counts() -> None:
+    model = ModelWithBars()
+    beam = model.beam()
+    model.bars(beam, straight(40, 5960, 0, 60))
+    places = (100.0, 300.0, 500.0)
+    model.bars(beam, *at(list(places)), diameter=10.0, SteelGrade="500W")
+    inner = [closed_stirrup(x, 40, 40, 560) for x in places]
+    model.bars(beam, *inner, diameter=10.0, SteelGrade="300R")
+    (zone,) = model.read(beam).stirrups
+    assert zone.yield_strength is not None
+    assert zone.yield_strength.value == 300.0
+
+
+def test_strength_known_of_some_stirrups_only_is_a_reason() -> None:
+    model = ModelWithBars()
+    beam = model.beam()
+    model.bars(beam, straight(40, 5960, 0, 60))
+    places = (100.0, 300.0, 500.0)
+    model.bars(beam, *at(list(places)), diameter=10.0, SteelGrade="500W")
+    model.bars(beam, *(closed_stirrup(x, 40, 40, 560) for x in places), diameter=10.0)
+    found = model.read(beam)
+    assert "known and of others not" in found.reasons
+
+
+@pytest.mark.parametrize("unit", ["mm", "m", "in"])
+def test_mapped_stirrups_are_those_drawn_one_by_one(unit: str) -> None:
+    places = [60.0, 160.0, 260.0, 460.0, 660.0, 860.0]
+    expected = spans(read_stirrups(*at(places)))
+    model = ModelWithBars(unit=unit)
+    beam = model.beam(origin=(1000.0, 500.0, 3000.0), along=(1.0, 2.0, 0.25))
+    model.bars(beam, straight(40, 5960, 0, 60))
+    solid = model.swept(closed_stirrup(0.0, 110.0, 40.0, 560.0), 10.0)
+    items = model.mapped(solid, [(x, 0.0, 0.0) for x in places])
+    model.aggregate(beam, [model.bar([item], 10.0, beam) for item in items])
+    found = model.read(beam)
+    assert spans(found) == [pytest.approx(zone) for zone in expected]
+    assert [zone.legs for zone in found.stirrups] == [2, 2]
+
+
+def test_stirrups_in_a_low_and_in_a_high_place_of_one_map_are_told_apart() -> None:
+    """The same map at two heights: only the lower one fits the section."""
+    model = ModelWithBars()
+    beam = model.beam()
+    model.bars(beam, straight(40, 5960, 0, 60))
+    solid = model.swept(closed_stirrup(0.0, 110.0, 40.0, 560.0), 10.0)
+    items = model.mapped(solid, [(100, 0, 0), (300, 0, 0), (500, 0, 0), (700, 0, 60)])
+    bars = [model.bar([item], 10.0, beam) for item in items]
+    model.aggregate(beam, bars)
+    found = model.read(beam)
+    assert f"#{bars[3].id()}: lies outside" in found.reasons
+    assert f"#{bars[0].id()}" not in found.reasons
+
+
+def place(x: float, legs: int = 2) -> Place:
+    return Place(
+        x, legs, legs * TEN, 10.0, True, 0, 35.0, 565.0, 115.0, np.array([0], dtype=np.intp)
+    )
+
+
+@settings(max_examples=300, deadline=None)
+@given(
+    st.lists(st.tuples(st.floats(20.0, 900.0), st.sampled_from([2, 4])), min_size=2, max_size=25),
+    st.floats(0.0, 700.0),
+    st.floats(0.0, 900.0),
+)
+def test_zones_cover_without_gaps_and_promise_no_more_than_there_is(
+    steps: list[tuple[float, int]], first: float, beyond: float
+) -> None:
+    xs = np.cumsum([first, *(gap for gap, _ in steps[1:])])
+    places = [place(float(x), legs) for x, (_, legs) in zip(xs, steps, strict=True)]
+    length = float(xs[-1]) + beyond
+    zones = zones_of_one_spacing(places, length)
+    assert all(one.end == other.start for one, other in pairwise(zones))
+    assert 0.0 <= zones[0].start <= xs[0]
+    assert xs[-1] <= zones[-1].end <= length
+    for one, other in pairwise(places):
+        (zone,) = [z for z in zones if z.start <= one.x and other.x <= z.end]
+        assert zone.spacing >= other.x - one.x
+        assert zone.least.area <= min(one.area, other.area)
+
+
+def test_thirty_four_stirrups_of_an_open_model(open_models: object) -> None:
+    """An IFC4X3 model made by others: bar data on the type only, bars under an assembly.
+
+    Its file places 34 stirrups from y = 25 to 4975 along a beam of 5000 and draws them 138 wide
+    and 338 high between centres, of 12 mm, in a section of 200 x 400.
+    """
+    import ifcopenshell
+
+    from ifccheck.beam import Axis, Outline, Run
+    from ifccheck.ifc.context import BeamFrame, make_context
+    from ifccheck.ifc.reinforcement import read_reinforcement
+
+    file = ifcopenshell.open(str(open_models / "01_ifc4x3_beam_34_stirrups.ifc"))  # type: ignore[operator]
+    (beam,) = file.by_type("IfcBeam")
+    axis = Axis((0.0, 0.0, -400.0), (0.0, 1.0, 0.0), (-1.0, 0.0, 0.0), (0.0, 0.0, 1.0), 5000.0)
+    ring = ((-100.0, 0.0), (100.0, 0.0), (100.0, 400.0), (-100.0, 400.0))
+    frame = BeamFrame(axis, (Run(0.0, 5000.0, Outline((ring,))),))
+    context = make_context(file, "IFC4X3")
+    (bars,) = read_reinforcement(context, {beam.id(): frame}, {})[beam.id()]
+    (zone,) = bars.stirrups
+    assert (zone.start, zone.end, zone.spacing) == pytest.approx((0.0, 5000.0, 150.0))
+    assert (zone.legs, zone.closed, zone.diameter) == (2, True, 12.0)
+    assert zone.leg_area == pytest.approx(113.097, abs=1e-3)
+    assert (zone.bottom, zone.top, zone.half_width) == pytest.approx((25.0, 375.0, 75.0))
+    assert "31 more" in zone.origin
+    assert "no longitudinal bar" in bars.reasons[0].text
