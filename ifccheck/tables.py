@@ -68,7 +68,7 @@ def survey_frame(beams: Sequence[Beam], missing: Mapping[str, Sequence[str]]) ->
             "mark": beam.mark,
             "key": beam.key,
             "storey": beam.storey,
-            "section": beam.runs[0].outline.name if beam.runs else "",
+            "section": " to ".join(dict.fromkeys(run.outline.name for run in beam.runs)),
             "length_m": _metres(beam.length),
             "material": beam.material,
             "concrete_strength_MPa": beam.concrete_strength.value
@@ -165,7 +165,7 @@ def _beam_cells(beam: Beam, span: Span | None) -> dict[str, Cell]:
         "key": beam.key,
         "storey": beam.storey,
         "type": beam.type_name,
-        "section": beam.runs[0].outline.name if beam.runs else "",
+        "section": " to ".join(dict.fromkeys(run.outline.name for run in beam.runs)),
         "material": beam.material,
         "concrete_strength_MPa": strength.value if strength else math.nan,
         "length_m": _metres(beam.length) if beam.axis else math.nan,

@@ -419,7 +419,7 @@ def made_up_report(
     return Report(
         version="0.0.0",
         standard_id="csa-a23.3-14",
-        standard_title="CSA A23.3-14, Design of concrete structures",
+        standard_title="CSA A23.3, Design of concrete structures",
         standard_edition="2014",
         actions="National Building Code of Canada 2015",
         shear_method="general",

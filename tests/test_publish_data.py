@@ -203,7 +203,7 @@ def test_every_beam_in_scope_has_its_result_also_one_that_is_not_rated() -> None
         assert told["Verdict"] == str(rating.verdict)
         assert told["Adequate"] is {"adequate": True, "falls short": False}.get(rating.verdict)
         assert told["LimitStatesNotChecked"] == "torsion, deflection, crack width"
-        assert told["Standard"] == REPORT.standard_title
+        assert told["Standard"] == REPORT.standard_name
         assert told["Basis"] == basis_identifier(REPORT)
         assert ("Reason" in told) is bool(rating.reasons)
         assert ("Utilisation" in told) is not math.isnan(rating.utilisation)

@@ -20,7 +20,7 @@ from ifccheck.publish.typeset import formula_html, numbers_html
 from ifccheck.publish.words import CAUTIONS, plain, utilisation_words
 from tests.reports_made_up import HOSTILE, hostile_report, made_up_report
 
-VOID = {"meta", "br", "input", "path", "rect", "circle", "img", "hr", "link"}
+VOID = {"meta", "br", "col", "input", "path", "rect", "circle", "img", "hr", "link"}
 OPTIONAL_END = {"tr", "td", "th", "thead", "tbody", "option", "li"}
 
 
@@ -141,7 +141,7 @@ def test_everything_asked_for_is_on_the_page() -> None:
     counts = REPORT.counts
     assert f"{counts.in_scope} beams in scope" in SEEN.text
     for words in (
-        REPORT.standard_title,
+        REPORT.standard_name,
         REPORT.standard_edition,
         REPORT.actions,
         REPORT.brief_name,

@@ -9,6 +9,7 @@ import numpy as np
 
 from ifccheck.beam import Bars, Outline, Stirrups
 from ifccheck.publish.elevation import LEFT, RIGHT, WIDTH, bar_words
+from ifccheck.publish.quantities import typographic
 from ifccheck.publish.svg import (
     Place,
     circle,
@@ -28,7 +29,7 @@ SECTION_WIDTH, SECTION_BOX = 300.0, (190.0, 190.0)
 SECTION_LEFT, SECTION_TOP = 46.0, 12.0
 PLOT = 128.0
 HEAD, FOOT = 20.0, 18.0
-SHOWN_BEYOND = 2.5
+SHOWN_BEYOND = 4.0
 """A resistance is drawn up to this many times the greatest demand."""
 
 
@@ -127,7 +128,7 @@ def diagram(drawn: Diagram, length: float) -> str:
     ]
     parts.append(path(segment(LEFT, zero, WIDTH - RIGHT, zero), "axis"))
     parts.append(_governing(drawn, frame))
-    named = f"{drawn.title}, {drawn.unit.replace('*', '·')}"
+    named = f"{drawn.title[:1].upper()}{drawn.title[1:]}, {typographic(drawn.unit)}"
     parts.append(label(LEFT, 12.0, named, "title"))
     if frame.cut:
         parts.append(label(WIDTH - RIGHT, 12.0, frame.cut, "note end"))

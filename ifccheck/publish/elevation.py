@@ -6,9 +6,9 @@ from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
 from functools import cached_property
 
-from ifccheck.beam import Anchor, Bars, Load, Run, Span, Stirrups, Support
+from ifccheck.beam import Anchor, Bars, Load, Ring, Run, Span, Stirrups, Support
+from ifccheck.publish.quantities import typographic
 from ifccheck.publish.svg import (
-    Place,
     circle,
     closed_path,
     drawing,
@@ -99,20 +99,26 @@ def elevation(sheet: Sheet) -> str:
     return drawing(WIDTH, height, "elevation", f"Elevation of {sheet.beam.mark}", parts)
 
 
-def _outlines(run: Run) -> tuple[tuple[Place, ...], ...]:
+def _outlines(run: Run) -> tuple[Ring, Ring]:
     return (run.outline.rings[0], (run.outline_end or run.outline).rings[0])
 
 
 def _body(runs: Sequence[Run], frame: Frame) -> str:
-    data = []
+    outline, edges = [], []
     for run in runs:
-        (low0, high0), (low1, high1) = (
-            (min(z for _, z in ring), max(z for _, z in ring)) for ring in _outlines(run)
-        )
+        first, last = (_heights(ring) for ring in _outlines(run))
         x0, x1 = frame.x(run.start), frame.x(run.end)
-        corners = [(x0, low0), (x1, low1), (x1, high1), (x0, high0)]
-        data.append(closed_path((x, frame.z(z)) for x, z in corners))
-    return path("".join(data), "concrete")
+        corners = [(x0, first[0]), (x1, last[0]), (x1, last[-1]), (x0, first[-1])]
+        outline.append(closed_path((x, frame.z(z)) for x, z in corners))
+        if len(first) == len(last):
+            inner = zip(first[1:-1], last[1:-1], strict=True)
+            edges += [segment(x0, frame.z(z0), x1, frame.z(z1)) for z0, z1 in inner]
+    return path("".join(outline), "concrete") + path("".join(edges), "edge")
+
+
+def _heights(ring: Ring) -> list[float]:
+    """Heights of the corners of an outline: soffit, edges between, top."""
+    return sorted({round(z, 1) for _, z in ring})
 
 
 def _bar_layer(index: int, bars: Bars, frame: Frame) -> str:
@@ -244,7 +250,7 @@ def _rows(loads: Iterable[Load]) -> list[int]:
 def load_words(load: Load) -> str:
     """Return a load as people write it."""
     if load.text:
-        return load.text
+        return typographic(load.text)
     if load.kind == "point":
         return f"{show(load.values[0], 'force')} at {show(load.start, 'length')}"
     if load.kind == "moment":

@@ -11,25 +11,31 @@ from dataclasses import dataclass
 
 from markupsafe import Markup
 
-from ifccheck.beam import Beam, Combination, OutOfScope, Verdict
+from ifccheck.beam import Combination, OutOfScope, Verdict
 from ifccheck.publish import tint
 from ifccheck.publish.plan import framing_plans
 from ifccheck.publish.report import Assumption, CaseSummary, Counts, Report
+from ifccheck.publish.rows import (
+    GAUGE,
+    GAUGE_END,
+    Row,
+    governing_titles,
+    storeys_in_order,
+    table_rows,
+)
 from ifccheck.publish.sheet_html import (
     SHEETS_PER_BLOCK,
     Block,
     foot_line,
     packed,
-    ratings_in_order,
     sheet_html,
 )
 from ifccheck.publish.svg import number
 from ifccheck.publish.templates import asset, template
-from ifccheck.publish.tint import BANDS, band
+from ifccheck.publish.tint import BANDS
 from ifccheck.publish.words import (
     CAUTIONS,
     factor_words,
-    utilisation_words,
     verdict_phrase,
 )
 from ifccheck.rating import Rating
@@ -37,13 +43,11 @@ from ifccheck.rating import Rating
 WORST = 10
 MOST_NAMED = 12
 """Marks named in a list before the rest are only counted."""
-GAUGE, GAUGE_END = 60, 1.25
-"""Length of the bar of a utilisation [px], and the utilisation at its end."""
 
 
 def render(report: Report) -> str:
     """Return the summary as one HTML file."""
-    rows = _rows(report)
+    rows = table_rows(report)
     numbers = {row.key: row.number for row in rows}
     style, script = _style(), asset("page.js")
     return template("page.html.j2").render(
@@ -61,9 +65,9 @@ def render(report: Report) -> str:
         plans=_plans(report, numbers),
         legend=[(name, words) for _, name, words in BANDS]
         + [("over", "falls short"), ("none", "not rated")],
-        storeys=_storeys(report),
+        storeys=storeys_in_order(report),
         verdicts=[str(verdict) for verdict in Verdict],
-        governing=_governing(report),
+        governing=governing_titles(report),
         rows=rows,
         unrated=_unrated(report, rows),
         out_of_scope=_out_of_scope(report.model.out_of_scope),
@@ -98,111 +102,6 @@ def _covered(ratings: Iterable[Rating]) -> list[tuple[str, int]]:
     return phrases.most_common()
 
 
-@dataclass(frozen=True, slots=True)
-class _Safe:
-    value: str
-    factor: str
-    text: str
-
-
-@dataclass(frozen=True, slots=True)
-class _Row:
-    """One line of the table of beams."""
-
-    number: int
-    key: str
-    mark: str
-    storey: str
-    storey_index: int
-    section: str
-    span: str
-    verdict: str
-    phrase: str
-    why: str
-    band: str
-    utilisation: str
-    used: str
-    gauge: str
-    governs: str
-    governs_index: str
-    x: str
-    safe: tuple[_Safe, ...]
-
-
-def _rows(report: Report) -> list[_Row]:
-    storeys = {name: i for i, name in enumerate(_storeys(report))}
-    governing = {title: i for i, title in enumerate(_governing(report))}
-    ordered = ratings_in_order(report.ratings[beam.key] for beam in report.model.beams)
-    return [_row(i, rating, report, storeys, governing) for i, rating in enumerate(ordered)]
-
-
-def _row(
-    i: int,
-    rating: Rating,
-    report: Report,
-    storeys: Mapping[str, int],
-    governing: Mapping[str, int],
-) -> _Row:
-    beam = report.beam(rating.beam)
-    worst = rating.governing
-    known = not math.isnan(rating.utilisation)
-    return _Row(
-        number=i,
-        key=beam.key,
-        mark=beam.mark,
-        storey=beam.storey,
-        storey_index=storeys[beam.storey],
-        section=beam.runs[0].outline.name if beam.runs else "",
-        span=_span(beam, report),
-        verdict=str(rating.verdict),
-        phrase=verdict_phrase(rating),
-        why=_why(rating),
-        band=band(rating),
-        utilisation=_sortable(rating.utilisation),
-        used=utilisation_words(rating.utilisation),
-        gauge=_gauge(rating.utilisation) if known else "",
-        governs=worst.title if worst else "",
-        governs_index=str(governing[worst.title]) if worst else "",
-        x=_metres(worst.position) if worst else "",
-        safe=tuple(_safe(rating, case.case) for case in report.cases),
-    )
-
-
-def _span(beam: Beam, report: Report) -> str:
-    span = report.spans.get(beam.key)
-    return _metres(span.end - span.start) if span else ""
-
-
-def _why(rating: Rating) -> str:
-    if not rating.reasons:
-        return ""
-    more = len(rating.reasons) - 1
-    return rating.reasons[0].text + (f" (and {more} more)" if more else "")
-
-
-def _sortable(value: float) -> str:
-    """A number for the script to sort by; empty for one that is not known."""
-    if math.isnan(value):
-        return ""
-    return "Infinity" if math.isinf(value) else repr(value)
-
-
-def _metres(place: float) -> str:
-    return f"{place / 1000.0:.2f}" if math.isfinite(place) else ""
-
-
-def _safe(rating: Rating, case: str) -> _Safe:
-    found = next((safe for safe in rating.safe_loads if safe.case == case), None)
-    if found is None:
-        return _Safe("", "–", "")
-    return _Safe(_sortable(found.factor), factor_words(found.factor), found.text)
-
-
-def _gauge(utilisation: float) -> str:
-    """Class of a bar as long as the utilisation, which ends where the scale ends."""
-    return f"w{math.ceil(min(utilisation, GAUGE_END) / GAUGE_END * GAUGE)}"
-
-
 def _style() -> str:
     """The style sheet, with what it shares with the drawings and the table."""
     widths = "".join(f".w{i}{{width:{i}px}}" for i in range(GAUGE + 1))
@@ -213,7 +112,7 @@ def _style() -> str:
 def _title_block(report: Report) -> list[tuple[str, str]]:
     return [
         ("model", report.model.file_name),
-        ("standard", report.standard_title),
+        ("standard", report.standard_name),
         ("actions", report.actions),
         ("brief", report.brief_name),
         ("model hash", report.model.sha256[:16]),
@@ -316,25 +215,15 @@ def _plans(report: Report, numbers: Mapping[str, int]) -> list[_Plan]:
     ]
 
 
-def _storeys(report: Report) -> list[str]:
-    heights = {storey.name: storey.elevation for storey in report.model.storeys}
-    names = {beam.storey for beam in report.model.beams}
-    return sorted(names, key=lambda name: (heights.get(name, math.inf), name))
-
-
-def _governing(report: Report) -> list[str]:
-    return sorted({r.governing.title for r in report.ratings.values() if r.governing})
-
-
 @dataclass(frozen=True, slots=True)
 class _Unrated:
     text: str
-    rows: list[_Row]
+    rows: list[Row]
 
 
-def _unrated(report: Report, rows: Sequence[_Row]) -> list[_Unrated]:
+def _unrated(report: Report, rows: Sequence[Row]) -> list[_Unrated]:
     """Reasons, the most frequent first, each with all its beams."""
-    found: dict[str, list[_Row]] = {}
+    found: dict[str, list[Row]] = {}
     for row in rows:
         for reason in report.ratings[row.key].reasons:
             found.setdefault(reason.text, []).append(row)
@@ -406,6 +295,6 @@ def _factors(pair: tuple[float, float] | None) -> str:
     return f"{unfavourable:g} / {favourable:g}"
 
 
-def _blocks(report: Report, rows: Sequence[_Row]) -> Iterator[Block]:
+def _blocks(report: Report, rows: Sequence[Row]) -> Iterator[Block]:
     foot = foot_line(report)
     return packed(sheet_html(report.sheet(row.key), foot) for row in rows)

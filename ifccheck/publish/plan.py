@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Callable, Mapping, Sequence
+from collections.abc import Callable, Iterator, Mapping, Sequence
 from dataclasses import dataclass
 from html import escape
 
@@ -11,6 +11,7 @@ import numpy as np
 import numpy.typing as npt
 
 from ifccheck.beam import Axis, Beam, Box, Member, Model, Outline, Run
+from ifccheck.publish.plan_labels import Labels, Stroke
 from ifccheck.publish.svg import (
     Place,
     closed_path,
@@ -27,7 +28,6 @@ Floats = npt.NDArray[np.float64]
 _Breadth = Callable[[Outline], Place]
 
 WIDTH, TALLEST, MARGIN = 1000.0, 620.0, 24.0
-LETTER, LETTER_WIDTH = 9.0, 5.0
 REACH = 300.0
 """Members this far below or above the beams of a storey are still drawn with them [mm]."""
 LIGHT = {"IfcColumn": "column", "IfcWall": "wall", "IfcBeam": "member", "IfcMember": "member"}
@@ -167,7 +167,7 @@ def _plan(
     parts += [
         _beam(shape, sheet, ratings[shape.beam.key], rows[shape.beam.key]) for shape in shapes
     ]
-    parts += [_mark(shape, sheet, ratings[shape.beam.key]) for shape in shapes]
+    parts += _marks(shapes, sheet, ratings)
     parts.append(_scale_bar(sheet))
     title = escape(plain(f"Framing plan of {name or 'no storey'}"), quote=True)
     svg = (
@@ -283,24 +283,20 @@ def _half_width(shape: _Shape) -> float:
     return math.dist(first[0], first[-1]) / 2.0
 
 
-def _mark(shape: _Shape, sheet: _Sheet, rating: Rating) -> str:
-    """Mark and utilisation beside the beam, where they fit."""
+def _marks(shapes: Sequence[_Shape], sheet: _Sheet, ratings: Mapping[str, Rating]) -> Iterator[str]:
+    """Mark and utilisation beside each beam, or the mark alone, where there is room."""
+    strokes = {s.beam.key: stroke for s in shapes if (stroke := _stroke(s, sheet))}
+    labels = Labels(list(strokes.values()))
+    for shape in reversed(shapes):
+        if stroke := strokes.get(shape.beam.key):
+            mark, used = plain(shape.beam.mark), ratings[shape.beam.key].utilisation
+            texts = [mark] if math.isnan(used) else [f"{mark}  {utilisation_words(used)}", mark]
+            yield labels.set(stroke, texts)
+
+
+def _stroke(shape: _Shape, sheet: _Sheet) -> Stroke | None:
     ends = _ends(shape, sheet)
-    if ends is None:
-        return ""
-    (x0, y0), (x1, y1) = sorted(ends, key=lambda p: (round(p[0], 1), -p[1]))
-    room = math.hypot(x1 - x0, y1 - y0) / LETTER_WIDTH
-    mark = plain(shape.beam.mark)
-    known = not math.isnan(rating.utilisation)
-    figure = utilisation_words(rating.utilisation) if known else ""
-    text = f"{mark}  {figure}" if len(mark) + len(figure) + 2 <= room else mark
-    if len(text) > room:
-        return ""
-    turn = math.degrees(math.atan2(y1 - y0, x1 - x0))
-    lift = _half_width(shape) * sheet.scale + 3.0
-    sine, cosine = math.sin(math.radians(turn)), math.cos(math.radians(turn))
-    x, y = (x0 + x1) / 2.0 + lift * sine, (y0 + y1) / 2.0 - lift * cosine
-    return label(x, y, text, "mark", turn)
+    return Stroke(*ends, _half_width(shape) * sheet.scale) if ends else None
 
 
 def _scale_bar(sheet: _Sheet) -> str:

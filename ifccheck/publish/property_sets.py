@@ -94,7 +94,7 @@ def _result(rating: Rating, report: Report, identifier: str) -> Iterator[ResultP
     yield from _given("LimitStatesChecked", "text", ", ".join(rating.checked))
     yield from _given("LimitStatesNotChecked", "text", ", ".join(rating.not_checked))
     yield from _given("Reason", "text", "; ".join(reason.text for reason in rating.reasons))
-    yield from _given("Standard", "label", report.standard_title)
+    yield from _given("Standard", "label", report.standard_name)
     yield from _given("Basis", "identifier", identifier)
 
 

@@ -8,6 +8,8 @@ import re
 from ifccheck.units import ShownKind, show
 
 _WHOLE: tuple[ShownKind, ...] = ("dimension", "stress", "area")
+_RAISED = {"2": "²", "3": "³"}
+_POWER = re.compile(r"(?<=\bm)[23]\b|(?<=mm)[23]\b")
 _NO_DECIMALS = re.compile(r"\.0+(?= )")
 SHORTEST_IN_METRES = 2000.0
 """Shorter lengths of a basis, such as a cover, read better in mm."""
@@ -29,13 +31,22 @@ UNIT_KINDS: dict[str, ShownKind] = {
 """How a quantity in a unit of the inside is shown."""
 
 
+def typographic(words: str) -> str:
+    """Return units as they are printed: a raised dot in products, raised powers.
+
+    >>> typographic("187.4 kN*m on 1500 mm2")
+    '187.4 kN·m on 1500 mm²'
+    """
+    return _POWER.sub(lambda found: _RAISED[found[0]], words.replace("*", "·"))
+
+
 def quantity_words(value: float, kind: ShownKind) -> str:
     """Return a quantity with its unit, with a raised dot in products.
 
     >>> quantity_words(40.0, "dimension"), quantity_words(1.5e8, "moment")
     ('40 mm', '150 kN·m')
     """
-    words = show(value, kind).replace("*", "·").replace("m2", "m²").replace("m3", "m³")
+    words = typographic(show(value, kind))
     return _NO_DECIMALS.sub("", words) if kind in _WHOLE and value == round(value) else words
 
 
@@ -49,7 +60,7 @@ def number_and_unit(value: float, unit: str) -> tuple[str, str]:
         return "–", ""
     kind = UNIT_KINDS.get(unit)
     if kind is None:
-        return f"{value:.3g}", unit
+        return f"{value:.3g}", typographic(unit)
     number, _, shown = quantity_words(value, kind).partition(" ")
     return number, shown
 

@@ -2,8 +2,9 @@
 
 from __future__ import annotations
 
+import math
 from collections import Counter
-from collections.abc import Callable, Mapping
+from collections.abc import Callable, Iterable, Mapping
 from dataclasses import dataclass
 from functools import cached_property
 
@@ -85,6 +86,11 @@ class Report:
     """Remarks on the run as a whole; those on a beam are in its rating"""
     assumptions: tuple[Assumption, ...] = ()
 
+    @property
+    def standard_name(self) -> str:
+        """Title and edition of the standard, for people."""
+        return f"{self.standard_title} ({self.standard_edition})"
+
     @cached_property
     def counts(self) -> Counts:
         """Number of beams by verdict."""
@@ -112,3 +118,13 @@ class Report:
     @cached_property
     def _beams(self) -> dict[str, Beam]:
         return {beam.key: beam for beam in self.model.beams}
+
+
+def ratings_in_order(ratings: Iterable[Rating]) -> list[Rating]:
+    """Return ratings with the worst first: short of resistance, not rated, most used."""
+    return sorted(ratings, key=_badness)
+
+
+def _badness(rating: Rating) -> tuple[int, float]:
+    order = {"falls short": 0, "not rated": 1, "adequate": 2}[rating.verdict]
+    return order, -rating.utilisation if math.isfinite(rating.utilisation) else -math.inf

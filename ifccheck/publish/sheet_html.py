@@ -12,10 +12,15 @@ from itertools import islice
 
 from markupsafe import Markup
 
-from ifccheck.beam import Anchor, Bars, Beam, Load, Span, Stirrups
+from ifccheck.beam import SELF, Anchor, Bars, Beam, Load, Span, Stirrups
 from ifccheck.publish.drawings import diagram, section
 from ifccheck.publish.elevation import bar_words, elevation, load_words, stirrup_words
-from ifccheck.publish.quantities import measure_words, number_and_unit, quantity_words
+from ifccheck.publish.quantities import (
+    measure_words,
+    number_and_unit,
+    quantity_words,
+    typographic,
+)
 from ifccheck.publish.report import Report
 from ifccheck.publish.templates import template
 from ifccheck.publish.tint import band
@@ -27,7 +32,7 @@ from ifccheck.publish.words import (
     utilisation_words,
     verdict_phrase,
 )
-from ifccheck.rating import BasisItem, LimitStateRating, Rating, SafeLoad
+from ifccheck.rating import BasisItem, LimitStateRating, SafeLoad
 from ifccheck.sheet import Sheet, SheetCheck, SheetLine
 
 SHEETS_PER_BLOCK = 8
@@ -57,6 +62,7 @@ def sheet_html(sheet: Sheet, foot: str) -> str:
         used="" if math.isnan(rating.utilisation) else utilisation_words(rating.utilisation),
         facts=_facts(sheet.beam, sheet.span),
         elevation=Markup(elevation(sheet)),
+        self_weight=any(load.case == SELF for load in sheet.loads) or not sheet.diagrams,
         diagrams=[Markup(diagram(drawn, length)) for drawn in sheet.diagrams],
         section=Markup(section(sheet)),
         states=[_state(state) for state in rating.limit_states],
@@ -86,7 +92,7 @@ def packed(sheets: Iterable[str]) -> Iterator[Block]:
 def foot_line(report: Report) -> str:
     """Return what identifies the run at the foot of every sheet."""
     return (
-        f"{report.model.file_name} · {report.standard_title} · brief {report.brief_name} "
+        f"{report.model.file_name} · {report.standard_name} · brief {report.brief_name} "
         f"{report.brief_sha256[:12]} · model {report.model.sha256[:12]} · ifccheck {report.version}"
     )
 
@@ -153,7 +159,7 @@ class _Line:
     symbol: Markup
     formula: Markup
     numbers: Markup
-    value: str
+    value: Markup
     unit: str
     clause: str
 
@@ -170,16 +176,17 @@ class _Check:
 
 
 def _check(check: SheetCheck) -> _Check:
-    known = not math.isnan(check.utilisation)
-    outcome = check.outcome.partition(": ")[2] if known else check.outcome
+    figure, _, rest = check.outcome.partition(": ")
+    used = utilisation_words(check.utilisation)
+    outcome = rest if figure == used else check.outcome
     return _Check(
         title=check.title,
         place=check.place,
         clause=check.clause,
         lines=[_line(line) for line in check.lines],
         over=falls_short(check.utilisation),
-        used=utilisation_words(check.utilisation),
-        outcome=outcome.replace("*", "·"),
+        used=used,
+        outcome=typographic(outcome),
     )
 
 
@@ -190,8 +197,8 @@ def _line(line: SheetLine) -> _Line:
         symbol=_set(line.symbol, formula_html),
         formula=_set(line.formula, formula_html),
         numbers=_set(line.numbers, numbers_html),
-        value=value.replace("-", "−") if value[:1] == "-" else value,
-        unit=unit.replace("*", "·"),
+        value=_set(value, numbers_html),
+        unit=typographic(unit),
         clause=line.clause,
     )
 
@@ -283,13 +290,3 @@ def _basis(item: BasisItem) -> _Basis:
 
 def _metres(place: float) -> str:
     return f"{place / 1000.0:.2f}" if math.isfinite(place) else "–"
-
-
-def ratings_in_order(ratings: Iterable[Rating]) -> list[Rating]:
-    """Return ratings with the worst first: short of resistance, not rated, most used."""
-    return sorted(ratings, key=_badness)
-
-
-def _badness(rating: Rating) -> tuple[int, float]:
-    order = {"falls short": 0, "not rated": 1, "adequate": 2}[rating.verdict]
-    return order, -rating.utilisation if math.isfinite(rating.utilisation) else -math.inf

@@ -16,12 +16,12 @@ from rich.text import Text
 from ifccheck.beam import Beam, Model, Verdict
 from ifccheck.publish.elevation import load_words
 from ifccheck.publish.quantities import measure_words, quantity_words
-from ifccheck.publish.report import Report
-from ifccheck.publish.sheet_html import ratings_in_order
+from ifccheck.publish.report import Report, ratings_in_order
 from ifccheck.publish.words import (
     factor_words,
     falls_short,
     printable,
+    section_words,
     utilisation_words,
     verdict_phrase,
 )
@@ -209,17 +209,11 @@ def _survey_group(beam: Beam) -> tuple[str, ...]:
     strength = beam.concrete_strength
     return (
         beam.storey or "no storey",
-        " to ".join(dict.fromkeys(run.outline.name or "unnamed" for run in beam.runs))
-        or "not read",
+        section_words(beam) or "not read",
         beam.material or "unknown",
         quantity_words(strength.value, "stress") if strength else "not stated",
         ", ".join(source.source for source in beam.reinforcement) or "none found",
     )
-
-
-def _sections(beam: Beam) -> str:
-    names = dict.fromkeys(run.outline.name or "unnamed" for run in beam.runs)
-    return " to ".join(names) or "not read"
 
 
 def _lacking(text: str, count: int, of: int) -> str:

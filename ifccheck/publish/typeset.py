@@ -24,7 +24,8 @@ SIGNS = {"*": "·", "-": "−", ">=": "≥", "<=": "≤", "==": "=", "!=": "≠"
 
 _TOKEN = re.compile(
     r"(?P<power>\*\*\s*(?P<exponent>[0-9.]+))|(?P<name>[A-Za-z]\w*'?\w*)"
-    r"|(?P<sign>>=|<=|==|!=|\*|-)|(?P<other>[0-9.]+(?:e[+-]?[0-9]+)?|.)"
+    r"|(?P<digits>[0-9.]+)e(?P<decade>[+-]?[0-9]+)"
+    r"|(?P<sign>>=|<=|==|!=|\*|-)|(?P<other>[0-9.]+|.)"
 )
 
 
@@ -51,6 +52,9 @@ def _token_html(found: re.Match[str]) -> str:
         return f"<sup>{exponent}</sup>"
     if name := found["name"]:
         return FUNCTIONS.get(name) or _name_html(name)
+    if decade := found["decade"]:
+        power = str(int(decade)).replace("-", "−")
+        return f"{found['digits']}·10<sup>{power}</sup>"
     if sign := found["sign"]:
         return escape(SIGNS[sign])
     return escape(found["other"])

@@ -6,7 +6,7 @@ import math
 import re
 from collections.abc import Iterable
 
-from ifccheck.beam import Verdict
+from ifccheck.beam import Beam, Outline, Verdict
 from ifccheck.rating import Rating
 from ifccheck.units import show_ratio
 
@@ -57,6 +57,19 @@ def joined(words: Iterable[str]) -> str:
     """
     *most, last = list(dict.fromkeys(words)) or [""]
     return f"{', '.join(most)} and {last}" if most else last
+
+
+def section_words(beam: Beam) -> str:
+    """Return a beam's sections as people name them: by name, else by width and height [mm]."""
+    outlines = [end for run in beam.runs for end in (run.outline, run.outline_end) if end]
+    return " to ".join(dict.fromkeys(map(_outline_words, outlines)))
+
+
+def _outline_words(outline: Outline) -> str:
+    if outline.name:
+        return outline.name
+    ys, zs = zip(*outline.rings[0], strict=True)
+    return f"{max(ys) - min(ys):.0f} × {max(zs) - min(zs):.0f}"
 
 
 def verdict_phrase(rating: Rating) -> str:
