@@ -60,6 +60,8 @@ def _direction(start: Place, end: Place) -> tuple[Place, float]:
 
 
 def _box(width: float, height: float, radius: float = 0.0) -> list[Piece]:
+    if not (width > 0.0 and height > 0.0):
+        raise UnreadableError("a rectangular profile of no width or height")
     x, y = width / 2.0, height / 2.0
     return rounded([(-x, -y, radius), (x, -y, radius), (x, y, radius), (-x, y, radius)])
 
@@ -79,13 +81,17 @@ def _hollow_rectangle(length: Length) -> Edges:
 
 
 def _trapezium(length: Length) -> Edges:
-    x, y = length("BottomXDim") / 2.0, length("YDim") / 2.0
-    left = -x + length("TopXOffset")
+    bottom, y = length("BottomXDim"), length("YDim") / 2.0
+    left = length("TopXOffset")
     right = left + length("TopXDim")
-    return [rounded([(-x, -y, 0.0), (x, -y, 0.0), (right, y, 0.0), (left, y, 0.0)])]
+    middle = (min(0.0, left) + max(bottom, right)) / 2.0
+    corners = [(0.0, -y), (bottom, -y), (right, y), (left, y)]
+    return [rounded([(x - middle, height, 0.0) for x, height in corners])]
 
 
 def _oval(along: float, across: float) -> list[Piece]:
+    if not (along > 0.0 and across > 0.0):
+        raise UnreadableError("a round profile of no radius")
     return [Arc((0.0, 0.0), (along, 0.0), (0.0, across), 0.0, 2.0 * math.pi)]
 
 
@@ -199,6 +205,8 @@ def _c_shape(length: Length) -> Edges:
 
 
 def _z_shape(length: Length) -> Edges:
+    """The flange width is taken over the web; a reader that measures it from the web's middle
+    draws a larger section."""
     y, half = length("Depth") / 2.0, length("WebThickness") / 2.0
     reach, flange = length("FlangeWidth") - half, length("FlangeThickness")
     edge, fillet = length("EdgeRadius", 0.0), length("FilletRadius", 0.0)

@@ -13,6 +13,8 @@ from ifccheck.ifc.profile_curves import Corner, Points, read_pieces, ring
 from ifccheck.ifc.profile_families import FAMILIES, SLOPES
 from ifccheck.ifc.profile_shapes import Profile
 
+MAY_BE_NEGATIVE = ("TopXOffset",)
+
 
 class Profiles:
     """The profiles of a model, each traced once."""
@@ -60,13 +62,19 @@ class Profiles:
             value = get(profile, name)
             if value is None and default is None:
                 raise UnreadableError(f"{profile.is_a()} without {name}")
-            return default if value is None and default is not None else float(value) * scale
+            if value is None:
+                return default or 0.0
+            if value < 0.0 and name not in MAY_BE_NEGATIVE:
+                raise UnreadableError(f"{profile.is_a()} with {name} of {value:g}")
+            return float(value) * scale
 
         family = FAMILIES[profile.is_a()]
         for slope in SLOPES.get(family, ()):
             if get(profile, slope):
                 raise UnreadableError(f"{profile.is_a()} with sloping faces")
         rings = tuple(ring(pieces, hole=number > 0) for number, pieces in enumerate(family(length)))
+        if profile.is_a() != "IfcRectangleProfileDef":
+            require_simple(rings)  # a flange thicker than the depth, a wall thicker than the tube
         matrix = self._placements.axes(get(profile, "Position"))
         return Profile(rings) if matrix is IDENTITY else Profile(rings).moved(matrix)
 
