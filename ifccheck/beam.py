@@ -8,6 +8,7 @@ soffit and y from the middle of the outline's width.
 
 from __future__ import annotations
 
+from collections.abc import Collection
 from dataclasses import dataclass, field
 from enum import StrEnum
 from typing import Literal
@@ -389,6 +390,16 @@ class Combination:
     name: str
     kind: CombinationKind
     factors: dict[str, tuple[float, float]] = field(hash=False)
+    terms: tuple[tuple[Nature, str], ...] = ()
+    """The name's terms by nature, where it is made of such: ("imposed", "1.5L")"""
+
+    def label(self, natures: Collection[Nature]) -> str:
+        """The name without the terms of natures that do not act."""
+        whole = " + ".join(text for _, text in self.terms)
+        if not self.terms or not self.name.startswith(whole):
+            return self.name
+        acting = " + ".join(text for nature, text in self.terms if nature in natures)
+        return acting + self.name.removeprefix(whole)
 
 
 Measure = Literal[

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
+from dataclasses import replace
 
 import numpy as np
 
@@ -111,4 +112,4 @@ def _with_only(
     away = [name for name in acting if name not in together]
     kept = {name: (0.0, 0.0) if name in away else pair for name, pair in factors.items()}
     name = f"{combination.name}, without {', '.join(away)}" if away else combination.name
-    return Combination(name, combination.kind, kept)
+    return replace(combination, name=name, factors=kept)

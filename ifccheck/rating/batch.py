@@ -148,10 +148,29 @@ def rate_batch(
         demand=acting.total,
         states=states,
         factors=_factors(standard, prepared, acting, stations, len(subjects), cases),
-        places=verdict.Places(tuple(combinations), effects.moment.shape[1], stations.x),
+        places=_places(subjects, cases, combinations, effects, stations),
         envelope=_envelope(acting.total, states),
         notes=standard.notes(prepared),
         basis=standard.basis(prepared),
+    )
+
+
+def _places(
+    subjects: Sequence[Subject],
+    cases: Sequence[Case],
+    combinations: Sequence[Combination],
+    effects: Effects,
+    stations: StationTable,
+) -> verdict.Places:
+    nature = {case.name: case.nature for case in cases}
+    return verdict.Places(
+        combinations=tuple(combinations),
+        arrangements=effects.moment.shape[1],
+        x=stations.x,
+        natures=tuple(
+            frozenset({nature[SELF], *(nature[load.case] for load in subject.loads)})
+            for subject in subjects
+        ),
     )
 
 

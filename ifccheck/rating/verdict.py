@@ -8,7 +8,7 @@ from dataclasses import dataclass, replace
 
 import numpy as np
 
-from ifccheck.beam import Combination, Face, Load, Reason, Verdict
+from ifccheck.beam import Combination, Face, Load, Nature, Reason, Verdict
 from ifccheck.mechanics.arrays import Floats
 from ifccheck.rating.factors import Factors
 from ifccheck.rating.results import LimitStateRating, SafeLoad
@@ -37,10 +37,13 @@ class Places:
     """Arrangements of each combination"""
     x: Floats
     """Stations (N)"""
+    natures: tuple[frozenset[Nature], ...]
+    """Natures of the loads on each beam (B)"""
 
-    def combination(self, element: int) -> str:
-        """Name of the combination of an element."""
-        return self.combinations[element // self.x.size // self.arrangements].name
+    def combination(self, element: int, beam: int) -> str:
+        """Name of the combination of an element, without what does not act on its beam."""
+        row = element // self.x.size // self.arrangements
+        return self.combinations[row].label(self.natures[beam])
 
     def position(self, element: int) -> float:
         """x of an element [mm]."""
@@ -66,7 +69,7 @@ def limit_state_rating(
         covers=state.covers,
         utilisation=math.nan if incomplete else utilisation,
         position=places.position(element) if demanded else math.nan,
-        combination=places.combination(element) if demanded else "",
+        combination=places.combination(element, beam) if demanded else "",
         demand=_at(check.demand, check, element) if demanded else 0.0,
         resistance=_at(check.resistance, check, element) if demanded else math.nan,
         demand_unit=state.demand_unit,
@@ -154,7 +157,7 @@ def safe_load(
         text=_safe_load_text(factor, kind, value, loads),
         governing=states[row].title if row >= 0 else "",
         position=places.position(element) if row >= 0 else math.nan,
-        combination=places.combination(element) if row >= 0 else "",
+        combination=places.combination(element, beam) if row >= 0 else "",
     )
 
 

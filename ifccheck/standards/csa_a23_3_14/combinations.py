@@ -108,7 +108,8 @@ def _applies(row: _Row, cases: Sequence[Case]) -> bool:
 def _combine(row: _Row, cases: Sequence[Case]) -> Combination:
     variable = dict(row.variable)
     factors = {case.name: _factor(row, variable, case) for case in cases}
-    return Combination(_name(row, cases, factors), "strength", factors)
+    terms = _terms(row, cases, factors)
+    return Combination(" + ".join(text for _, text in terms), "strength", factors, terms)
 
 
 def _factor(row: _Row, variable: dict[Nature, float], case: Case) -> tuple[float, float]:
@@ -125,12 +126,14 @@ def _as_storage(case: Case) -> bool:
     return (case.category or "").strip().lower() not in ORDINARY_CATEGORIES
 
 
-def _name(row: _Row, cases: Sequence[Case], factors: dict[str, tuple[float, float]]) -> str:
-    terms = [_term(row.permanent[0], "D")]
+def _terms(
+    row: _Row, cases: Sequence[Case], factors: dict[str, tuple[float, float]]
+) -> tuple[tuple[Nature, str], ...]:
+    terms: list[tuple[Nature, str]] = [("permanent", _term(row.permanent[0], "D"))]
     for nature, _ in row.variable:
         present = {factors[case.name][0] for case in cases if case.nature == nature}
-        terms += [_term(factor, _SYMBOLS[nature]) for factor in sorted(present)]
-    return " + ".join(terms)
+        terms += [(nature, _term(factor, _SYMBOLS[nature])) for factor in sorted(present)]
+    return tuple(terms)
 
 
 def _term(factor: float, symbol: str) -> str:
