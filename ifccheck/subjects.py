@@ -358,6 +358,7 @@ def _direct(contacts: Sequence[Contact]) -> tuple[bool, bool]:
     pressed = {
         contact.place
         for contact in contacts
-        if contact.side == "below" or contact.other_class.startswith(_DIRECT_CLASSES)
+        if contact.side == "below"
+        or (contact.side != "above" and contact.other_class.startswith(_DIRECT_CLASSES))
     }
     return "start" in pressed, "end" in pressed
