@@ -12,7 +12,7 @@ import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 
-from ifccheck.beam import Anchor, Axis
+from ifccheck.beam import Anchor, Axis, Outline
 from ifccheck.publish.drawings import diagram, section
 from ifccheck.publish.elevation import LEFT, RIGHT, WIDTH, Frame, elevation
 from ifccheck.publish.plan import framing_plans
@@ -289,3 +289,46 @@ def test_a_building_far_from_the_origin_is_drawn_the_same() -> None:
             [float(n) for n in re.findall(r"-?\d+\.?\d*", p.svg)] for p in (near, far)
         )
         assert far_places == pytest.approx(near_places, abs=0.11)
+
+
+def letters(svg: str) -> list[tuple[str, list[tuple[float, float]]]]:
+    """Every mark of a plan with places along the middle of its letters."""
+    found = []
+    for text in of_class(svg, "mark"):
+        words = text.text or ""
+        turn = math.radians(
+            float(re.findall(r"rotate\((-?[\d.]+)", text.get("transform") or "rotate(0")[0])
+        )
+        x, y = (float(text.get(name) or 0) for name in "xy")
+        x, y = x + 3.0 * math.sin(turn), y - 3.0 * math.cos(turn)
+        half = len(words) * 5.0 / 2.0
+        steps = [half * i / 10.0 for i in range(-10, 11)]
+        found.append((words, [(x + s * math.cos(turn), y + s * math.sin(turn)) for s in steps]))
+    return found
+
+
+def test_no_mark_is_printed_over_another() -> None:
+    report = made_up_report(bays=14, rows=6)
+    rows = {beam.key: i for i, beam in enumerate(report.model.beams)}
+    for plan in framing_plans(report.model, report.ratings, rows):
+        found = letters(plan.svg)
+        assert len(found) > 0.5 * plan.beams
+        for i, (_, places) in enumerate(found):
+            for _, others in found[i + 1 :]:
+                if math.dist(places[10], others[10]) < 120.0:
+                    assert min(math.dist(a, b) for a in places for b in others) > 5.0
+
+
+def test_the_broken_line_of_an_edge_beam_lies_on_its_stem() -> None:
+    ring = ((-600.0, 0.0), (-300.0, 0.0), (-300.0, 450.0), (600.0, 450.0), (600.0, 600.0),
+            (-600.0, 600.0))  # fmt: skip
+    short = next(r for r in REPORT.ratings.values() if str(r.verdict) == "falls short")
+    beam = REPORT.beam(short.beam)
+    edge = replace(beam, runs=(replace(beam.runs[0], outline=Outline((ring,), "L")),))
+    model = replace(REPORT.model, beams=(edge,), members=())
+    (plan,) = framing_plans(model, REPORT.ratings, {edge.key: 0})
+    (body,) = of_class(plan.svg, "body")
+    (dashes,) = of_class(plan.svg, "dashes")
+    across = [y for _, y in numbers(body.get("d") or "")]
+    (_, y), *_ = numbers(dashes.get("d") or "")
+    assert y == pytest.approx((min(across) + max(across)) / 2.0, abs=0.1)

@@ -249,26 +249,29 @@ def _beam(shape: _Shape, sheet: _Sheet, rating: Rating, row: int) -> str:
     )
 
 
-def _ends(shape: _Shape, sheet: _Sheet) -> tuple[Place, Place] | None:
-    axis = shape.beam.axis
-    if axis is None:
-        return None
-    return sheet.place(_above(axis, 0.0, 0.0)), sheet.place(_above(axis, axis.length, 0.0))
+def _ends(shape: _Shape, sheet: _Sheet) -> tuple[Place, Place]:
+    """The ends of the stem's middle line; the longer way of a beam of which only the box is
+    known."""
+    first, last = shape.stem[0], shape.stem[-1]
+    if shape.beam.axis is None and math.dist(first[0], first[1]) < math.dist(first[1], first[2]):
+        first = last = (*first[1:], first[0])
+    return sheet.place(_middle(first[0], first[-1])), sheet.place(_middle(last[1], last[2]))
+
+
+def _middle(one: Place, other: Place) -> Place:
+    return (one[0] + other[0]) / 2.0, (one[1] + other[1]) / 2.0
 
 
 def _along(shape: _Shape, sheet: _Sheet) -> str:
-    ends = _ends(shape, sheet)
-    return segment(*ends[0], *ends[1]) if ends else ""
+    start, end = _ends(shape, sheet)
+    return segment(*start, *end)
 
 
 def _start_mark(shape: _Shape, sheet: _Sheet) -> str:
     """A stroke across the beam near its start, standing out on both sides."""
-    ends = _ends(shape, sheet)
-    if ends is None or shape.beam.axis is None:
-        return ""
-    (x0, y0), (x1, y1) = ends
+    (x0, y0), (x1, y1) = _ends(shape, sheet)
     length = math.hypot(x1 - x0, y1 - y0)
-    if length < 1.0:
+    if shape.beam.axis is None or length < 1.0:
         return ""
     along, across = ((x1 - x0) / length, (y1 - y0) / length), _half_width(shape) * sheet.scale + 2.5
     inset = min(5.0, length / 6.0)
@@ -280,23 +283,20 @@ def _start_mark(shape: _Shape, sheet: _Sheet) -> str:
 
 def _half_width(shape: _Shape) -> float:
     first = shape.stem[0]
-    return math.dist(first[0], first[-1]) / 2.0
+    breadth = math.dist(first[0], first[-1])
+    if shape.beam.axis is None:
+        breadth = min(breadth, math.dist(first[0], first[1]))
+    return breadth / 2.0
 
 
 def _marks(shapes: Sequence[_Shape], sheet: _Sheet, ratings: Mapping[str, Rating]) -> Iterator[str]:
     """Mark and utilisation beside each beam, or the mark alone, where there is room."""
-    strokes = {s.beam.key: stroke for s in shapes if (stroke := _stroke(s, sheet))}
+    strokes = {s.beam.key: Stroke(*_ends(s, sheet), _half_width(s) * sheet.scale) for s in shapes}
     labels = Labels(list(strokes.values()))
     for shape in reversed(shapes):
-        if stroke := strokes.get(shape.beam.key):
-            mark, used = plain(shape.beam.mark), ratings[shape.beam.key].utilisation
-            texts = [mark] if math.isnan(used) else [f"{mark}  {utilisation_words(used)}", mark]
-            yield labels.set(stroke, texts)
-
-
-def _stroke(shape: _Shape, sheet: _Sheet) -> Stroke | None:
-    ends = _ends(shape, sheet)
-    return Stroke(*ends, _half_width(shape) * sheet.scale) if ends else None
+        mark, used = plain(shape.beam.mark), ratings[shape.beam.key].utilisation
+        texts = [mark] if math.isnan(used) else [f"{mark}  {utilisation_words(used)}", mark]
+        yield labels.set(strokes[shape.beam.key], texts)
 
 
 def _scale_bar(sheet: _Sheet) -> str:

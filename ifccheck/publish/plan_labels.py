@@ -11,7 +11,7 @@ from ifccheck.publish.svg import Place, label
 LETTER_HEIGHT, LETTER_WIDTH, LIFT = 9.0, 5.0, 3.0
 STEP = 4.5
 """Distance of the places that stand for a label or a beam."""
-SHARES = (0.5, 0.3, 0.7)
+SHARES = (0.5, 0.25, 0.75, 0.35, 0.65)
 CELL = 24.0
 
 
@@ -59,18 +59,24 @@ class Labels:
         return ""
 
     def _free(self, spot: _Spot, own: Stroke, clear_of_beams: bool) -> bool:
-        for place in spot.taken:
-            for cell in _around(place):
-                if any(
-                    math.dist(place, other) < LETTER_HEIGHT for other in self._letters.get(cell, ())
-                ):
-                    return False
-                if clear_of_beams and any(
-                    stroke is not own and math.dist(place, other) < half + LETTER_HEIGHT / 2.0
-                    for other, half, stroke in self._beams.get(cell, ())
-                ):
-                    return False
-        return True
+        return not any(
+            self._meets_letters(place) or (clear_of_beams and self._meets_a_beam(place, own))
+            for place in spot.taken
+        )
+
+    def _meets_letters(self, place: Place) -> bool:
+        return any(
+            math.dist(place, other) < LETTER_HEIGHT
+            for cell in _around(place)
+            for other in self._letters.get(cell, ())
+        )
+
+    def _meets_a_beam(self, place: Place, own: Stroke) -> bool:
+        return any(
+            stroke is not own and math.dist(place, other) < half + LETTER_HEIGHT / 2.0
+            for cell in _around(place)
+            for other, half, stroke in self._beams.get(cell, ())
+        )
 
     def _take(self, spot: _Spot) -> None:
         for place in spot.taken:

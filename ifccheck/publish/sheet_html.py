@@ -29,6 +29,7 @@ from ifccheck.publish.words import (
     factor_words,
     falls_short,
     joined,
+    section_words,
     utilisation_words,
     verdict_phrase,
 )
@@ -99,9 +100,11 @@ def foot_line(report: Report) -> str:
 
 def _facts(beam: Beam, span: Span | None) -> list[tuple[str, str]]:
     facts = [
-        ("name", beam.name),
+        ("name", beam.name if beam.name != beam.mark else ""),
+        ("tag", beam.tag if beam.tag != beam.mark else ""),
         ("type", beam.type_name),
         ("storey", beam.storey),
+        ("section", section_words(beam)),
         ("material", beam.material),
         ("length", quantity_words(beam.length, "length") if beam.length else ""),
         ("span", quantity_words(span.end - span.start, "length") if span else ""),
