@@ -1,0 +1,157 @@
+"""Boxes round members against the corners that ifcopenshell's engine gives the same bodies."""
+
+from __future__ import annotations
+
+import math
+from pathlib import Path
+from typing import Any
+
+import ifcopenshell
+import numpy as np
+import pytest
+
+from ifccheck.beam import Box
+from tests.ifc_models import Building, Opened, volume_and_points
+from tests.test_ifc_straight import faceted_box
+
+
+def overhang(box: Box, points: np.ndarray) -> np.ndarray:
+    """How far the farthest corners stand out of the box along its axes [mm]."""
+    inner = (points - np.array(box.centre)) @ np.array(box.axes).T
+    return np.abs(inner).max(axis=0) - np.array(box.half)
+
+
+def assert_right_handed(box: Box) -> None:
+    x, y, z = np.array(box.axes)
+    assert np.cross(x, y) == pytest.approx(z, abs=1e-8)
+    assert [x @ x, y @ y, x @ y] == pytest.approx([1.0, 1.0, 0.0], abs=1e-8)
+
+
+MODELS = {
+    "01_ifc4x3_beam_34_stirrups.ifc": 1,
+    "03_ifc2x3_precast_mixed_rebar.ifc": 40,
+    "05_ifc2x3_structural_timber_steel.ifc": 50,
+    "06_ifc2x3_bridge_concrete.ifc": 28,
+    "08_ifc4x3_grid_concrete_beams.ifc": 35,
+    "16_ifc4_timber_mapped_negz.ifc": 50,
+}
+
+
+@pytest.mark.parametrize("name", MODELS)
+def test_every_member_of_the_open_models_lies_in_its_box(name: str, open_models: Path) -> None:
+    from ifccheck.ifc.reader import read_model
+
+    file = ifcopenshell.open(str(open_models / name))
+    model = read_model(Opened(file, str(file.schema)), {})
+    step = max(1, len(model.members) // MODELS[name])
+    for member in model.members[::step]:
+        product = file.by_id(member.step_id)
+        if product.HasOpenings or product.ObjectPlacement.is_a("IfcGridPlacement"):
+            continue  # the engine cuts openings out of the body, and knows no grid placement
+        _, points = volume_and_points(product)
+        assert_right_handed(member.box)
+        assert overhang(member.box, points).max() < 0.5, product
+
+
+def only_member(building: Building) -> Box:
+    (member,) = building.read().members
+    return member.box
+
+
+@pytest.mark.parametrize("turn", [0.0, 0.3, 1.2])
+def test_box_of_a_skew_wall_follows_the_wall(turn: float) -> None:
+    """A wall drawn as a polygon askew to its placement: the box is as thick as the wall."""
+    along = np.array((math.cos(turn), math.sin(turn)))
+    left = np.array((-along[1], along[0]))
+    corners = [(0 * along), 5000 * along, 5000 * along + 200 * left, 200 * left]
+    building = Building()
+    outline = building.outline(*[corner.tolist() for corner in corners])
+    product = building.member("IfcWall", building.extrusion(outline, 3000.0))
+    box = only_member(building)
+    assert sorted(box.half) == pytest.approx([100.0, 1500.0, 2500.0])
+    assert overhang(box, volume_and_points(product)[1]) == pytest.approx(0.0, abs=1e-3)
+
+
+def test_box_of_an_oblique_extrusion_encloses_it() -> None:
+    building = Building()
+    solid = building.extrusion(building.rectangle(400, 300), 3000.0, (0.5, 0.2, 1.0))
+    product = building.member("IfcColumn", solid)
+    assert overhang(only_member(building), volume_and_points(product)[1]).max() < 1e-3
+
+
+def test_box_of_a_cut_column_ends_at_the_cut() -> None:
+    building = Building()
+    solid = building.extrusion(building.rectangle(400, 400), 3000.0)
+    cut = building.clipped(solid, building.half_space((0, 0, 2500), (0, 0, 1)))
+    product = building.member("IfcColumn", cut)
+    box = only_member(building)
+    assert box.half == pytest.approx((200.0, 200.0, 1250.0))
+    assert overhang(box, volume_and_points(product)[1]) == pytest.approx(0.0, abs=1e-3)
+
+
+def test_box_of_a_brep_lies_along_its_placement() -> None:
+    building = Building()
+    placement = building.placement((100, 200, 300), (0, 0, 1), (0.6, 0.8, 0))
+    product = building.member("IfcColumn", faceted_box(building), placement=placement)
+    box = only_member(building)
+    assert box.half == pytest.approx((3000.0, 150.0, 250.0))
+    assert box.axes[0] == pytest.approx((0.6, 0.8, 0.0))
+    assert overhang(box, volume_and_points(product)[1]) == pytest.approx(0.0, abs=1e-3)
+
+
+def test_box_round_several_items_and_tapered_ones() -> None:
+    building = Building("IFC4")
+    base = building.extrusion(building.rectangle(1000, 1000), 300.0)
+    shaft = building.entity(
+        "IfcExtrudedAreaSolidTapered",
+        building.rectangle(400, 400),
+        building.axes((0, 0, 300)),
+        building.direction((0, 0, 1)),
+        2000.0,
+        building.rectangle(1200, 200),
+    )
+    building.member("IfcColumn", base, shaft)
+    assert only_member(building).half == pytest.approx((600.0, 500.0, 1150.0))
+
+
+def test_members_whose_extent_is_unknown_are_counted() -> None:
+    building = Building("IFC4")
+    revolved = building.entity(
+        "IfcRevolvedAreaSolid",
+        building.rectangle(200, 200),
+        building.axes(),
+        building.entity(
+            "IfcAxis1Placement", building.point(1000, 0, 0), building.direction((0, 1, 0))
+        ),
+        1.0,
+    )
+    building.member("IfcColumn", revolved)
+    building.member("IfcMember", revolved)
+    building.member("IfcColumn")  # has no body and is no doubt
+    model = building.read()
+    assert model.members == ()
+    (remark,) = model.remarks
+    assert remark.kind == "doubt"
+    assert remark.text.startswith(
+        "the extent of 2 members cannot be read (1 IfcColumn, 1 IfcMember)"
+    )
+
+
+def test_what_cannot_touch_a_beam_is_left_out() -> None:
+    building = Building("IFC4")
+    solid: Any = building.extrusion(building.rectangle(400, 400), 3000.0)
+    for kind in (
+        "IfcFurniture",
+        "IfcCovering",
+        "IfcReinforcingBar",
+        "IfcSpace",
+        "IfcOpeningElement",
+    ):
+        building.member(kind, solid)
+    building.member("IfcWallStandardCase", solid, Name="W-1", Tag="w1")
+    (member,) = building.read().members
+    assert (member.ifc_class, member.name, member.storey) == (
+        "IfcWallStandardCase",
+        "W-1",
+        "Level 1",
+    )
