@@ -400,29 +400,3 @@ class Combination:
             return self.name
         acting = " + ".join(text for nature, text in self.terms if nature in natures)
         return acting + self.name.removeprefix(whole)
-
-
-Measure = Literal[
-    "label", "text", "identifier", "real", "logical", "length", "force", "line_force",
-    "moment", "pressure", "area",
-]  # fmt: skip
-
-
-@dataclass(frozen=True, slots=True)
-class ResultProperty:
-    """One property of a result set, in N, mm, MPa; ``logical`` takes True, False or None."""
-
-    name: str
-    measure: Measure
-    value: str | float | bool | None
-
-
-@dataclass(frozen=True, slots=True)
-class ResultSet:
-    """One property set to be written on one beam."""
-
-    step_id: int
-    guid: str
-    ordinal: int
-    name: str
-    properties: tuple[ResultProperty, ...]

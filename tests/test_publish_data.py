@@ -10,12 +10,13 @@ from dataclasses import replace
 
 import pytest
 
-from ifccheck.beam import Beam, ResultSet, Verdict
+from ifccheck.beam import Beam, Verdict
 from ifccheck.publish.csv import neutral, ratings_csv
 from ifccheck.publish.json import ratings_json
 from ifccheck.publish.property_sets import basis_identifier, result_sets
 from ifccheck.publish.report import Report
 from ifccheck.rating import BasisItem, Rating
+from ifccheck.result_sets import ResultSet
 from ifccheck.tables import (
     basis_frame,
     limit_states_frame,

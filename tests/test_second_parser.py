@@ -10,10 +10,10 @@ from typing import Any
 import ifcopenshell
 import pytest
 
-from ifccheck.beam import ResultProperty, ResultSet
 from ifccheck.ifc.identity import RESULT_SET_NAMES, set_guid
 from ifccheck.ifc.opening import OpenedModel, open_model
 from ifccheck.ifc.writeback import rated_bytes
+from ifccheck.result_sets import ResultProperty, ResultSet
 
 pytestmark = pytest.mark.node
 

@@ -21,13 +21,13 @@ import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 
-from ifccheck.beam import ResultProperty, ResultSet
 from ifccheck.errors import ModelError
 from ifccheck.ifc.identity import RESULT_SET_NAMES, relation_guid, set_guid
 from ifccheck.ifc.lexer import LARGEST_ID
 from ifccheck.ifc.opening import OpenedModel, open_model
 from ifccheck.ifc.step_text import step_real, step_string
 from ifccheck.ifc.writeback import fresh_ids, packed, rated_bytes
+from ifccheck.result_sets import ResultProperty, ResultSet
 
 P = ResultProperty
 RESULT, LIMIT_STATES, SAFE_LOADS, BASIS = RESULT_SET_NAMES

@@ -6,9 +6,9 @@ from collections.abc import Callable, Iterable, Iterator, Mapping
 from dataclasses import dataclass, field
 from typing import Any, Literal, get_args
 
-from ifccheck.beam import Measure
 from ifccheck.ifc.entity import UnreadableError, get, several, text
 from ifccheck.ifc.units import UNIT_TYPE_KINDS, scale_of
+from ifccheck.result_sets import Measure
 
 MeasureWithUnit = Literal["length", "force", "line_force", "moment", "pressure", "area"]
 MEASURES_WITH_UNIT: tuple[MeasureWithUnit, ...] = get_args(MeasureWithUnit)

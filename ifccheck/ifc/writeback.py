@@ -9,14 +9,15 @@ from typing import Any
 import numpy as np
 
 import ifccheck
-from ifccheck.beam import Measure, ResultProperty, ResultSet
 from ifccheck.ifc.archive import pack
+from ifccheck.ifc.entity import GLOBAL_ID, text_at
 from ifccheck.ifc.identity import RESULT_SET_NAMES, relation_guid, set_guid
 from ifccheck.ifc.lexer import LARGEST_ID, Offsets
 from ifccheck.ifc.marks import with_block
 from ifccheck.ifc.opening import OpenedModel
 from ifccheck.ifc.result_units import UnitEntity, result_units
 from ifccheck.ifc.step_text import step_logical, step_real, step_string
+from ifccheck.result_sets import Measure, ResultProperty, ResultSet
 
 LONGEST_LABEL = 255
 
@@ -142,7 +143,7 @@ def _require_sound(opened: OpenedModel, sets: Sequence[ResultSet]) -> None:
 
 def _guid_at(file: Any, step_id: int) -> str | None:
     try:
-        return str(file.by_id(step_id)[0])
+        return text_at(file.by_id(step_id), GLOBAL_ID)
     except RuntimeError:
         return None
 

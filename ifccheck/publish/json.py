@@ -45,7 +45,19 @@ Data = dict[str, Any]
 
 def ratings_json(report: Report) -> str:
     """Return the whole answer as JSON; the same report gives the same text."""
-    return json.dumps(_report(report), indent=1, allow_nan=False) + "\n"
+    members = (f"{_text(name)}: {_lines(value)}" for name, value in _report(report).items())
+    return "{\n" + ",\n".join(members) + "\n}\n"
+
+
+def _lines(value: Any) -> str:
+    """A member of the whole: a list with one row a line, so that two runs can be compared."""
+    if isinstance(value, list) and value:
+        return "[\n" + ",\n".join(map(_text, value)) + "\n]"
+    return _text(value)
+
+
+def _text(value: Any) -> str:
+    return json.dumps(value, allow_nan=False)
 
 
 def _report(report: Report) -> Data:

@@ -7,9 +7,10 @@ import math
 from collections.abc import Iterable, Iterator
 from typing import cast, get_args
 
-from ifccheck.beam import Measure, ResultProperty, ResultSet, Verdict
+from ifccheck.beam import Verdict
 from ifccheck.publish.report import Report
 from ifccheck.rating import BasisItem, Rating, SafeLoad
+from ifccheck.result_sets import Measure, ResultProperty, ResultSet
 
 LONGEST_LABEL = 255
 """Characters that a label or an identifier may have; longer ones are cut with an ellipsis and

@@ -7,23 +7,13 @@ from collections.abc import Sequence
 
 import numpy as np
 
-from ifccheck.beam import (
-    Bars,
-    Case,
-    Face,
-    Given,
-    Measure,
-    Reason,
-    Remark,
-    Stirrups,
-    Support,
-    Verdict,
-)
+from ifccheck.beam import Bars, Case, Face, Given, Reason, Remark, Stirrups, Support, Verdict
 from ifccheck.mechanics.arrays import Bools
 from ifccheck.rating import verdict
 from ifccheck.rating.batch import Batch
 from ifccheck.rating.results import BasisItem, LimitStateRating, Rating, SafeLoad
 from ifccheck.rating.subject import Subject, Unrated
+from ifccheck.result_sets import Measure
 from ifccheck.standards import LimitState, Standard
 from ifccheck.units import show
 

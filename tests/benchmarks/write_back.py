@@ -16,12 +16,12 @@ from typing import Any
 
 import ifcopenshell
 
-from ifccheck.beam import ResultProperty, ResultSet
 from ifccheck.ifc.identity import RESULT_SET_NAMES
 from ifccheck.ifc.lexer import scan
 from ifccheck.ifc.opening import OpenedModel, open_model
 from ifccheck.ifc.writeback import rated_bytes
 from ifccheck.outputs import write_all
+from ifccheck.result_sets import ResultProperty, ResultSet
 
 P = ResultProperty
 PROPERTIES = {
