@@ -9,6 +9,7 @@ from ifccheck.beam import Beam, Box, Given, OutOfScope, Reason, Remark, Run
 from ifccheck.ifc.bodies import body_items, read_prism
 from ifccheck.ifc.context import Context
 from ifccheck.ifc.entity import (
+    ILL_TYPED,
     NAME,
     OBJECT_TYPE,
     TAG,
@@ -108,6 +109,9 @@ class BeamReader:
             straight = straighten(prism, self._context.placements.matrix(entity))
         except UnreadableError as error:
             doubts.reason(str(error))
+            return None
+        except ILL_TYPED as error:
+            doubts.reason(f"body cannot be read: it does not hold what its classes ask ({error})")
             return None
         for end, length, steep in zip(
             ("start", "end"), straight.oblique, straight.steep, strict=True

@@ -11,7 +11,7 @@ from typing import TYPE_CHECKING, NamedTuple
 import numpy as np
 
 from ifccheck.ifc.clips import Cloud, Cut, read_cut
-from ifccheck.ifc.entity import REPRESENTATION, Entity, UnreadableError, get, need, several
+from ifccheck.ifc.entity import REPRESENTATION, Entity, UnreadableError, get, need, numbers, several
 from ifccheck.ifc.placements import IDENTITY, Matrix
 from ifccheck.ifc.profile_curves import Points
 from ifccheck.ifc.profile_shapes import Profile
@@ -159,7 +159,7 @@ def extrusion(context: Context, profiles: Profiles, placed: Placed) -> Prism:
     if not (math.isfinite(depth) and depth > 0.0):
         raise UnreadableError(f"body is extruded by {depth:g} mm")
     whole = matrix if axes is IDENTITY else matrix @ axes
-    along = combined(whole[:3, :3].T.tolist(), scaled(unit(direction[0]), depth))
+    along = combined(whole[:3, :3].T.tolist(), scaled(unit(numbers(direction, 3)), depth))
     return _unscaled(profile, whole, along) if mapped else Prism(profile, whole, along)
 
 

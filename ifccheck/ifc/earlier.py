@@ -9,6 +9,7 @@ from typing import Any
 
 import numpy as np
 
+from ifccheck.ifc.entity import GLOBAL_ID, text_at
 from ifccheck.ifc.identity import RESULT_SET_NAMES, set_guid
 from ifccheck.ifc.lexer import Scan
 from ifccheck.ifc.marks import break_after, mark_comments
@@ -44,7 +45,9 @@ def result_instances(file: Any) -> tuple[set[int], dict[str, list[int]]]:
     for name, candidate in _named_sets(file):
         relations = _relations(file, candidate)
         if not guid_counts:
-            guid_counts.update(element.GlobalId for element in file.by_type("IfcElement"))
+            guid_counts.update(
+                text_at(element, GLOBAL_ID) for element in file.by_type("IfcElement")
+            )
         if _is_derived(candidate.GlobalId, name, relations, guid_counts):
             ours[candidate.id()] = candidate
             ours.update((relation.id(), relation) for relation in relations)
@@ -72,7 +75,7 @@ def _relations(file: Any, property_set: Any) -> list[Any]:
 
 def _is_derived(guid: str, name: str, relations: Iterable[Any], counts: Counter[str]) -> bool:
     """Tell whether a set's GlobalId is the one that its beam gives it."""
-    beams = {beam.GlobalId for relation in relations for beam in relation.RelatedObjects}
+    beams = {text_at(beam, GLOBAL_ID) for relation in relations for beam in relation.RelatedObjects}
     return any(
         guid == set_guid(beam, ordinal, name)
         for beam in beams

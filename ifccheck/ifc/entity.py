@@ -7,6 +7,7 @@ once per class and kept.
 
 from __future__ import annotations
 
+import math
 from typing import Any
 
 Entity = Any
@@ -23,6 +24,13 @@ _positions: dict[tuple[str, str], int | None] = {}
 
 class UnreadableError(Exception):
     """Something in the model cannot be read surely; the text tells people what."""
+
+
+ILL_TYPED = (
+    AttributeError, TypeError, ValueError, IndexError, KeyError, ArithmeticError, RuntimeError,
+)  # fmt: skip
+"""What reading raises where an attribute holds what its class does not allow: ifcopenshell opens
+such files without a word."""
 
 
 def get(entity: Entity, name: str) -> Any:
@@ -42,6 +50,19 @@ def need(entity: Entity, name: str) -> Any:
     if value is None:
         raise UnreadableError(f"{label(entity)} has no {name}")
     return value
+
+
+def numbers(entity: Entity, count: int) -> tuple[float, ...]:
+    """Return the coordinates of a point or the ratios of a direction, ``count`` of them; in a
+    plane (2) there may be a third.
+
+    Raises UnreadableError where there are others: what is no number, ``nan`` for one,
+    ifcopenshell leaves out without a word, so that the rest would stand in the wrong place.
+    """
+    values: tuple[float, ...] | None = entity.get_argument(0)
+    if values is None or len(values) not in (count, 3) or not math.isfinite(sum(values)):
+        raise UnreadableError(f"{label(entity)} does not hold {count} numbers")
+    return values
 
 
 def text(entity: Entity, name: str) -> str:

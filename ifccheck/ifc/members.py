@@ -9,7 +9,15 @@ from dataclasses import dataclass
 from ifccheck.beam import Box, Member, Remark
 from ifccheck.ifc.boxes import Boxes
 from ifccheck.ifc.context import Context
-from ifccheck.ifc.entity import GLOBAL_ID, NAME, TAG, Entity, UnreadableError, text_at
+from ifccheck.ifc.entity import (
+    GLOBAL_ID,
+    ILL_TYPED,
+    NAME,
+    TAG,
+    Entity,
+    UnreadableError,
+    text_at,
+)
 from ifccheck.ifc.storeys import Storeys
 
 CLASSES = (
@@ -39,7 +47,7 @@ def read_members(
         step_id = entity.id()
         try:
             box = known.get(step_id) or boxes.of(entity)
-        except UnreadableError:
+        except (UnreadableError, *ILL_TYPED):
             unread[entity.is_a()] += 1
             continue
         if box is not None:

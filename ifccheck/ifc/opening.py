@@ -22,6 +22,8 @@ from ifccheck.ifc.step_text import escaped
 
 SUPPORTED_SCHEMAS = ("IFC2X3", "IFC4", "IFC4X3_ADD2")
 _OUTSIDE_ASCII = re.compile(rb"[\x80-\xff]+")
+_LOST = re.compile(r"Instance reference (#\d+) used by instance #(\d+) .*not found")
+"""What ifcopenshell notes of a reference that leads nowhere; it leaves it out of its list."""
 _STAGE = "opening"
 
 
@@ -177,10 +179,16 @@ def _readable(data: bytes) -> bytes:
 
 def _open(path: Path, place: Path) -> Any:
     try:
-        return ifcopenshell.open(str(place))
+        ifcopenshell.get_log()  # what was said of earlier files
+        file = ifcopenshell.open(str(place))
     except (ifcopenshell.Error, OSError, RuntimeError) as error:
         cause = str(error).removesuffix(", check logs")
         raise ModelError(f"{path}: cannot be read ({cause}); {EXPORT_AGAIN}") from error
+    if lost := _LOST.search(ifcopenshell.get_log()):
+        raise ModelError(
+            f"{path}: #{lost[2]} refers to {lost[1]}, which is not in it; {EXPORT_AGAIN}"
+        )
+    return file
 
 
 def _require_all(path: Path, data: bytes, found: Scan, file: Any) -> None:

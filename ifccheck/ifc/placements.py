@@ -15,6 +15,7 @@ from ifccheck.ifc.entity import (
     get,
     label,
     need,
+    numbers,
     several,
 )
 from ifccheck.ifc.vectors import Triple
@@ -65,7 +66,7 @@ class Placements:
     def _placed(self, placement: Entity, parent: Matrix) -> Matrix:
         kind = placement.is_a()
         if kind == "IfcLocalPlacement":
-            own = self.axes(placement.get_argument(1))
+            own = self.axes(need(placement, "RelativePlacement"))
             return parent if own is IDENTITY else parent @ own
         if kind == "IfcGridPlacement":
             return self._on_grid(placement, parent)
@@ -93,35 +94,34 @@ class Placements:
             axis, reference = None, position.get_argument(1)
         else:
             raise UnreadableError(f"{label(position)} is no axis placement that is read")
-        origin = location.get_argument(0)
+        flat = kind == "IfcAxis2Placement2D"
+        origin = numbers(location, 2 if flat else 3)
         if axis is None and reference is None and not any(origin):
             return IDENTITY
-        matrix = self._rotation(axis, reference).copy()
+        matrix = self._rotation(axis, reference, flat).copy()
         for row, coordinate in enumerate(origin):
             matrix[row, 3] = coordinate * self.scale
         return matrix
 
-    def _rotation(self, axis: Entity | None, reference: Entity | None) -> Matrix:
+    def _rotation(self, axis: Entity | None, reference: Entity | None, flat: bool) -> Matrix:
         key = (0 if axis is None else axis.id(), 0 if reference is None else reference.id())
         if key not in self._rotations:
-            self._rotations[key] = rigid(_given(axis), _given(reference))
+            self._rotations[key] = rigid(_given(axis, flat), _given(reference, flat))
         return self._rotations[key]
 
     def operator(self, operator: Entity) -> Matrix:
         """Return a Cartesian transformation operator, which may scale and mirror [mm]."""
         flat = operator.is_a("IfcCartesianTransformationOperator2D")
         first, second, third = (get(operator, name) for name in ("Axis1", "Axis2", "Axis3"))
-        matrix = rigid(_given(third), _given(first))
+        matrix = rigid(_given(third, flat), _given(first, flat))
         if first is None and flat and second is not None:
-            along = unit(second[0])
+            along = unit(_given(second, flat))
             matrix[:3, 0] = (along[1], -along[0], 0.0)
             matrix[:3, 1] = along
-        elif (
-            matrix[:3, 1] @ np.array(unit(second[0]) if second is not None else (0.0, 1.0, 0.0)) < 0
-        ):
+        elif matrix[:3, 1] @ unit(_given(second, flat) or (0.0, 1.0, 0.0)) < 0:
             matrix[:3, 1] = -matrix[:3, 1]
         matrix[:3, :3] *= _scales(operator)
-        for row, coordinate in enumerate(need(operator, "LocalOrigin")[0]):
+        for row, coordinate in enumerate(numbers(need(operator, "LocalOrigin"), 2 if flat else 3)):
             matrix[row, 3] = coordinate * self.scale
         return matrix
 
@@ -172,8 +172,8 @@ class Placements:
         return line * self.scale
 
 
-def _given(direction: Entity | None) -> Any:
-    return None if direction is None else direction[0]
+def _given(direction: Entity | None, flat: bool) -> Any:
+    return None if direction is None else numbers(direction, 2 if flat else 3)
 
 
 def _scales(operator: Entity) -> tuple[float, float, float]:

@@ -13,7 +13,7 @@ from dataclasses import dataclass
 import numpy as np
 import numpy.typing as npt
 
-from ifccheck.ifc.entity import Entity, UnreadableError, get, label, need, several
+from ifccheck.ifc.entity import Entity, UnreadableError, get, label, need, numbers, several
 from ifccheck.ifc.placements import Placements
 
 Points = npt.NDArray[np.float64]
@@ -145,13 +145,14 @@ def _polyline(curve: Entity, placements: Placements) -> list[Piece]:
     scale = placements.scale
     return [
         Corner((c[0] * scale, c[1] * scale))
-        for c in (point[0] for point in several(curve, "Points"))
+        for c in (numbers(point, 2) for point in several(curve, "Points"))
     ]
 
 
 def _indexed(curve: Entity, placements: Placements) -> list[Piece]:
     scale = placements.scale
-    points = [(c[0] * scale, c[1] * scale) for c in need(need(curve, "Points"), "CoordList")]
+    listed = need(curve, "Points")
+    points = [(x * scale, y * scale) for x, y in _pairs(listed)]
     segments = several(curve, "Segments")
     if not segments:
         return [Corner(point) for point in points]
@@ -163,6 +164,14 @@ def _indexed(curve: Entity, placements: Placements) -> list[Piece]:
         else:
             pieces += [Corner(place) for place in places]
     return pieces
+
+
+def _pairs(points: Entity) -> Sequence[Place]:
+    """Coordinates of a list of points; what is no number ifcopenshell leaves out."""
+    pairs: Sequence[Place] = need(points, "CoordList")
+    if any(len(pair) != 2 for pair in pairs):
+        raise UnreadableError(f"{label(points)} does not hold 2 numbers for each point")
+    return pairs
 
 
 def arc_through(start: Place, middle: Place, end: Place) -> list[Piece]:

@@ -12,7 +12,8 @@ from ifccheck.errors import ModelError
 from ifccheck.ifc.beams import BeamReader, Identity
 from ifccheck.ifc.boxes import Boxes
 from ifccheck.ifc.context import BeamFrame, Context, make_context
-from ifccheck.ifc.entity import GLOBAL_ID, Entity, text_at
+from ifccheck.ifc.entity import GLOBAL_ID, ILL_TYPED, Entity, text_at
+from ifccheck.ifc.lexer import EXPORT_AGAIN
 from ifccheck.ifc.members import read_members
 from ifccheck.ifc.profiles import Profiles
 from ifccheck.ifc.reinforcement import read_reinforcement
@@ -42,8 +43,19 @@ def read_model(opened: Opened, mapping: Mapping[str, str]) -> Model:
     """Return all that a model says of its beams.
 
     ``mapping`` names the properties that hold reinforcement: field = "Set.Property".
-    Raises ModelError where the model has no unit of length to measure its beams by.
+    Raises ModelError where the model has no unit of length to measure its beams by, or breaks
+    its schema where that is not the matter of a single beam.
     """
+    try:
+        return _read(opened, mapping)
+    except ILL_TYPED as error:
+        raise ModelError(
+            f"{opened.file_name}: an instance does not hold what its class asks ({error}); "
+            f"{EXPORT_AGAIN}"
+        ) from error
+
+
+def _read(opened: Opened, mapping: Mapping[str, str]) -> Model:
     context = make_context(opened.file, opened.schema)
     entities = opened.file.by_type("IfcBeam")
     if entities and "length" not in context.units.declared:

@@ -183,6 +183,7 @@ def _finished(member: _Member, cuts: tuple[Plane, ...]) -> Straight:
     if sum(oblique) > OBLIQUE_SHARE * length or max(starts) >= min(ends):
         raise UnreadableError(VARIES)
     low, high = (first, *section.low), (last, *section.high)
+    _require_finite((*low, *high, length))
     origin = (starts[-1], (low[1] + high[1]) / 2.0, low[2])
     middle = [(a + b) / 2.0 for a, b in zip(low, high, strict=True)]
     half = [(b - a) / 2.0 for a, b in zip(low, high, strict=True)]
@@ -194,6 +195,11 @@ def _finished(member: _Member, cuts: tuple[Plane, ...]) -> Straight:
         oblique=oblique,
         steep=_steep(planes, section.corners, starts, ends),
     )
+
+
+def _require_finite(places: Sequence[float]) -> None:
+    if not math.isfinite(sum(places)):
+        raise UnreadableError("body lies at places that are no numbers")
 
 
 def _reach(planes: Sequence[Plane], places: Sequence[Place]) -> tuple[list[float], list[float]]:

@@ -188,7 +188,7 @@ def _heights(shapes: Sequence[_Shape]) -> tuple[float, float]:
 def _shape(beam: Beam, hulls: Mapping[int, tuple[Place, ...]]) -> _Shape | None:
     if beam.axis is None or not beam.runs:
         hull = hulls.get(beam.step_id)
-        return _Shape(beam, (hull,), (hull,)) if hull else None
+        return _Shape(beam, (hull,), (hull,)) if hull and len(hull) > 2 else None
     axis = beam.axis
     whole = tuple(_seen_from_above(axis, run, _breadth) for run in beam.runs)
     return _Shape(beam, whole, tuple(_seen_from_above(axis, run, _stem) for run in beam.runs))
