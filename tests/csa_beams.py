@@ -44,6 +44,7 @@ def beam(
         span=a([SPAN]),
         layer_height=a([[60.0, height - 60.0]]),
         layer_area=a([[soffit_area, top_area]]),
+        layer_bar_area=a([[500.0, 500.0]]),
         layer_diameter=a([[25.2, 25.2]]),
         layer_yield=np.full((1, 2), bar_yield),
         layer_start=a([[soffit_start, -np.inf]]),

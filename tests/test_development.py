@@ -194,6 +194,7 @@ def members_with(start_anchor: int, end_anchor: int, height: float) -> Members:
         span=np.array([6000.0]),
         layer_height=np.array([[height, height + 50.0]]),
         layer_area=np.array([[1500.0, 1000.0]]),
+        layer_bar_area=500.0 * one,
         layer_diameter=25.2 * one,
         layer_yield=400.0 * one,
         layer_start=np.array([[200.0, 1500.0]]),
@@ -227,7 +228,7 @@ def beam_with(start_anchor: int, end_anchor: int, x: np.ndarray, height: float =
     return prepared_at(members_with(start_anchor, end_anchor, height), x)
 
 
-LD = 1.15 / 60.0 * 400 / 5 * np.pi / 4 * 25.2**2
+LD = 1.15 / 60.0 * 400 / 5 * 500.0
 LDH = 100 * 25.2 / 5
 
 

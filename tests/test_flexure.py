@@ -64,6 +64,7 @@ def prepared_of(sections: list[Given], span: float = 1e6) -> Prepared:
         span=np.full(count, span),
         layer_height=layers[..., 0],
         layer_area=layers[..., 1],
+        layer_bar_area=np.pi / 4 * layers[..., 2] ** 2,
         layer_diameter=layers[..., 2],
         layer_yield=np.tile(np.array([[s.steel_yield] for s in sections]), (1, most)),
         layer_start=np.full(shape, -np.inf),

@@ -35,6 +35,8 @@ class Members:
     """Bar centres above the soffit [mm] (B, L)"""
     layer_area: Floats
     """Area of all the bars of the layer [mm2] (B, L)"""
+    layer_bar_area: Floats
+    """Area of one bar [mm2] (B, L)"""
     layer_diameter: Floats
     """[mm] (B, L)"""
     layer_yield: Floats

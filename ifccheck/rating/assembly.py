@@ -33,7 +33,9 @@ _ANCHOR = {
     Anchor.HOOK: ANCHOR_HOOK,
     Anchor.ANCHORED: ANCHOR_FULL,
 }
-_LAYER_FIELDS = ("height", "area", "diameter", "yield", "start", "end", "cover_distance")
+_LAYER_FIELDS = (
+    "height", "area", "bar_area", "diameter", "yield", "start", "end", "cover_distance",
+)  # fmt: skip
 _LAYER_PADDING = {"diameter": 1.0, "yield": 400.0}
 
 
@@ -108,6 +110,7 @@ def _layers(subject: Subject) -> dict[str, Floats]:
     return {
         "height": np.array([b.z for b in bars], dtype=np.float64),
         "area": np.array([b.count * b.area for b in bars], dtype=np.float64),
+        "bar_area": np.array([b.area for b in bars], dtype=np.float64),
         "diameter": np.array([b.diameter for b in bars], dtype=np.float64),
         "yield": np.array([g.value for g in subject.bar_yield], dtype=np.float64),
         "start": np.array([b.start for b in bars], dtype=np.float64),

@@ -163,6 +163,7 @@ def _layers(members: Members) -> Layers:
         cover_distance=m.layer_cover_distance,
         top_bar=m.layer_height > development.DEPTH_BELOW_TOP_BARS,
         density_factor=density,
+        bar_area=m.layer_bar_area,
     )
     hooked = development.hook_development_length(
         diameter=m.layer_diameter,
