@@ -10,6 +10,7 @@ import math
 import re
 from difflib import get_close_matches
 from fractions import Fraction
+from functools import lru_cache
 from typing import Literal, NamedTuple, get_args
 
 from ifccheck.errors import BriefError
@@ -283,6 +284,7 @@ def _plain(unit: str) -> str:
     return re.sub(r"[^a-z0-9/%]", "", unit.lower().replace("²", "2").replace("³", "3"))
 
 
+@lru_cache(maxsize=8192)
 def show(
     value: float, kind: ShownKind, digits: int | None = None, rounding: Rounding = "nearest"
 ) -> str:

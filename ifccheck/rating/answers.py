@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import math
 from collections.abc import Sequence
+from functools import cache
 
 import numpy as np
 
@@ -278,6 +279,7 @@ def _basis_station(batch: Batch, row: int, governing: LimitStateRating | None) -
     return first + int(np.abs(x - target).argmin())
 
 
+@cache
 def _words(name: str) -> str:
     """ "EffectiveDepthSagging" as "effective depth, sagging"."""
     words = "".join(f" {c.lower()}" if c.isupper() else c for c in name).split()

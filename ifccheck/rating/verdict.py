@@ -9,7 +9,7 @@ from dataclasses import dataclass, replace
 import numpy as np
 
 from ifccheck.beam import Combination, Face, Load, Nature, Reason, Verdict
-from ifccheck.mechanics.arrays import Floats
+from ifccheck.mechanics.arrays import Bools, Floats
 from ifccheck.rating.factors import Factors
 from ifccheck.rating.results import LimitStateRating, SafeLoad
 from ifccheck.rating.utilisation import Worst
@@ -79,16 +79,20 @@ def limit_state_rating(
     )
 
 
-def _at(values: Floats, check: Check, element: int) -> float:
-    return float(np.broadcast_to(values, check.utilisation.shape).reshape(-1)[element])
+def _at(values: Floats | Bools, check: Check, element: int) -> float:
+    place = np.unravel_index(element, check.utilisation.shape)
+    return float(np.broadcast_to(values, check.utilisation.shape)[place])
 
 
 def _outside(check: Check, element: int) -> str | None:
-    for outside in check.outside:
-        mask = np.broadcast_to(outside.mask, check.utilisation.shape).reshape(-1)
-        if mask[element]:
-            return f"outside {outside.clause}: {outside.text}"
-    return None
+    return next(
+        (
+            f"outside {outside.clause}: {outside.text}"
+            for outside in check.outside
+            if _at(outside.mask, check, element)
+        ),
+        None,
+    )
 
 
 def with_unknown_steel(
