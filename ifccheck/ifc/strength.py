@@ -29,12 +29,12 @@ AGREE = 0.01
 STAGE = "materials"
 
 TWO_STRENGTHS = re.compile(
-    r"(?<![\w.])(?:l?c|lc|hpc|uhpc)?[ _]?(\d{2,3}) ?/ ?(\d{2,3})(?![\d.])", re.I
+    r"(?<![a-z0-9.])(?:u?hpc|l?c)?[ _]?(\d{2,3}) ?/ ?(\d{2,3})(?![\d.])", re.I
 )
 CYLINDER = re.compile(
-    r"(?:f['’`]?c['’`]?k?|fck)\s*[=:]?\s*(\d+(?:\.\d+)?)\s*(ksi|psi|mpa|n/mm)?", re.I
+    r"(?<![a-z])f['’`]?c['’`]?k?\s*[=:]?\s*(\d+(?:\.\d+)?)\s*(ksi|psi|mpa|n/mm)?", re.I
 )
-CUBE = re.compile(r"(?:fcu|r?ck,? ?cube|rck|fck,? ?cube)\s*[=:]?\s*(\d+(?:\.\d+)?)", re.I)
+CUBE = re.compile(r"(?<![a-z])(?:fcu|rck|fck,? ?cube)\s*[=:]?\s*(\d+(?:\.\d+)?)", re.I)
 WITH_UNIT = re.compile(r"(?<![\w.])(\d+(?:\.\d+)?)\s*(ksi|psi|mpa|n/mm)", re.I)
 SPANISH = re.compile(r"(?<![a-z])h[aplm]-? ?(\d{2,3})(?!\d)", re.I)
 AMBIGUOUS = re.compile(r"(?<![a-z])([bckm]) ?-?(\d{2})(?![\d/.]|\s*[x×])", re.I)
@@ -80,8 +80,8 @@ def _range(text: str, bare: bool) -> tuple[float, float]:
         return (CUBE_TO_CYLINDER * float(found[1]),) * 2
     if found := CYLINDER.search(text):
         return (_in_mpa(float(found[1]), found[2]),) * 2
-    if found := TWO_STRENGTHS.search(text):
-        return (min(float(found[1]), float(found[2])),) * 2
+    if (found := TWO_STRENGTHS.search(text)) and _is_class(float(found[1]), float(found[2])):
+        return (float(found[1]),) * 2
     if found := WITH_UNIT.search(text):
         return (_in_mpa(float(found[1]), found[2]),) * 2
     if found := SPANISH.search(text):
@@ -91,6 +91,11 @@ def _range(text: str, bare: bool) -> tuple[float, float]:
     if bare and (found := BARE.match(text)):
         return CUBE_TO_CYLINDER * float(found[1]), float(found[1])
     return 0.0, 0.0
+
+
+def _is_class(cylinder: float, cube: float) -> bool:
+    """Tell whether two numbers are a strength class and not, say, two sides of a section."""
+    return cylinder <= MOST and 1.05 <= cube / cylinder <= 1.4
 
 
 def _in_mpa(value: float, unit: str | None) -> float:
