@@ -36,7 +36,7 @@ _ANCHOR = {
 _LAYER_FIELDS = (
     "height", "area", "bar_area", "diameter", "yield", "start", "end", "cover_distance",
 )  # fmt: skip
-_LAYER_PADDING = {"diameter": 1.0, "yield": 400.0}
+_LAYER_PADDING = {"bar_area": 1.0, "diameter": 1.0, "yield": 400.0}
 
 
 @dataclass(frozen=True, slots=True)
