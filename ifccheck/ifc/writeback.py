@@ -65,12 +65,19 @@ class _Lines:
 
     def __init__(self, numbers: Iterator[int]) -> None:
         self._numbers = numbers
+        self._values: dict[ResultProperty, int] = {}
         self.written: list[str] = []
 
     def add(self, instance: str) -> int:
         number = next(self._numbers)
         self.written.append(f"#{number}={instance};")
         return number
+
+    def value(self, item: ResultProperty, units: Mapping[Measure, UnitEntity]) -> int:
+        """Number of a property; beams that have the same one share it."""
+        if item not in self._values:
+            self._values[item] = self.add(_single_value(item, units))
+        return self._values[item]
 
 
 def _writable(result: ResultSet) -> tuple[ResultProperty, ...]:
@@ -93,7 +100,7 @@ def _add_set(
     units: Mapping[Measure, UnitEntity],
     owner: str,
 ) -> None:
-    values = ",".join(f"#{lines.add(_single_value(item, units))}" for item in kept)
+    values = ",".join(f"#{lines.value(item, units)}" for item in kept)
     identity = (result.guid, result.ordinal, result.name)
     number = lines.add(
         f"IFCPROPERTYSET('{set_guid(*identity)}',{owner},{step_string(result.name)},$,({values}))"

@@ -19,6 +19,7 @@ given whole in a text property."""
 ADEQUATE = {Verdict.ADEQUATE: True, Verdict.FALLS_SHORT: False, Verdict.NOT_RATED: None}
 
 Value = str | float | bool | None
+_MEASURES = frozenset(get_args(Measure))
 
 
 def result_sets(report: Report) -> tuple[ResultSet, ...]:
@@ -133,6 +134,6 @@ def _basis(items: tuple[BasisItem, ...]) -> Iterator[ResultProperty]:
 
 
 def _measure(item: BasisItem) -> Measure:
-    if item.measure not in get_args(Measure):
+    if item.measure not in _MEASURES:
         raise ValueError(f"{item.name}: {item.measure!r} is not a measure")
     return cast(Measure, item.measure)
