@@ -11,7 +11,7 @@ from typing import TYPE_CHECKING, NamedTuple
 import numpy as np
 
 from ifccheck.ifc.clips import Cloud, Cut, read_cut
-from ifccheck.ifc.entity import REPRESENTATION, Entity, UnreadableError, get, need, numbers, several
+from ifccheck.ifc.entity import REPRESENTATION, Entity, UnreadableError, get, need, numbers
 from ifccheck.ifc.placements import IDENTITY, Matrix
 from ifccheck.ifc.profile_curves import Points
 from ifccheck.ifc.profile_shapes import Profile
@@ -106,7 +106,7 @@ def body_items(context: Context, product: Entity) -> list[Placed]:
 def body_representation(shape: Entity) -> Entity | None:
     """Return the representation that holds the body: the one named so, else the first solid."""
     solid: Entity | None = None
-    for representation in several(shape, "Representations"):
+    for representation in shape.get_argument(2) or ():
         name = representation.get_argument(1)
         if name == "Body":
             return representation
@@ -120,7 +120,7 @@ def _resolved(
 ) -> Iterator[Placed]:
     if depth > DEEPEST:
         raise UnreadableError("mapped items refer to each other")
-    for item in several(representation, "Items"):
+    for item in representation.get_argument(3) or ():
         if item.is_a() != "IfcMappedItem":
             yield Placed(item, matrix, depth > 0)
             continue

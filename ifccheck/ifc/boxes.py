@@ -150,8 +150,10 @@ def box_of_prism(prism: Prism) -> Box:
     low, high = [low_x, low_y, 0.0], [high_x, high_y, 0.0]
     for number, axis in enumerate(axes):
         reach = dot(axis, prism.along)
-        low[number] += min(0.0, reach)
-        high[number] += max(0.0, reach)
+        if reach < 0.0:
+            low[number] += reach
+        else:
+            high[number] += reach
     middle = [(a + b) / 2.0 for a, b in zip(low, high, strict=True)]
     half = [(b - a) / 2.0 for a, b in zip(low, high, strict=True)]
     centre = added(prism.matrix[:3, 3].tolist(), combined(axes, middle))

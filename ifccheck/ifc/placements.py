@@ -47,7 +47,7 @@ class Placements:
 
     def placement(self, placement: Entity) -> Matrix:
         """Return an object placement in the building [mm]."""
-        chain: list[Entity] = []
+        chain: dict[int, Entity] = {}
         known: Matrix = IDENTITY
         step: Entity | None = placement
         while step is not None:
@@ -55,12 +55,12 @@ class Placements:
             if step_id in self._objects:
                 known = self._objects[step_id]
                 break
-            if any(step_id == earlier.id() for earlier in chain):
+            if step_id in chain:
                 raise UnreadableError(f"placement {label(placement)} refers to itself")
-            chain.append(step)
+            chain[step_id] = step
             step = get(step, "PlacementRelTo")
-        for step in reversed(chain):
-            known = self._objects[step.id()] = self._placed(step, known)
+        for step_id, step in reversed(chain.items()):
+            known = self._objects[step_id] = self._placed(step, known)
         return known
 
     def _placed(self, placement: Entity, parent: Matrix) -> Matrix:

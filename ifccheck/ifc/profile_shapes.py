@@ -79,18 +79,24 @@ class Profile:
     @cached_property
     def longest_side(self) -> Place:
         """Direction of the longest side, a unit vector."""
-        sides = after(self.rings[0]) - self.rings[0]
-        x, y = sides[int((sides * sides).sum(axis=1).argmax())].tolist()
-        length = math.hypot(x, y)
-        return x / length, y / length
+        places = self.rings[0].tolist()
+        longest, x, y = 0.0, 1.0, 0.0
+        last_x, last_y = places[-1]
+        for next_x, next_y in places:
+            length = math.hypot(next_x - last_x, next_y - last_y)
+            if length > longest:
+                longest, x, y = length, (next_x - last_x) / length, (next_y - last_y) / length
+            last_x, last_y = next_x, next_y
+        return x, y
 
     @cached_property
     def extent(self) -> tuple[float, float, float, float]:
         """Least and greatest coordinates along its longest side and to the left of it [mm]."""
         x, y = self.longest_side
-        local = self.rings[0] @ np.array(((x, -y), (y, x)))
-        (low_x, low_y), (high_x, high_y) = local.min(axis=0).tolist(), local.max(axis=0).tolist()
-        return low_x, high_x, low_y, high_y
+        places = self.rings[0].tolist()
+        along = [a * x + b * y for a, b in places]
+        left = [b * x - a * y for a, b in places]
+        return min(along), max(along), min(left), max(left)
 
     @cached_property
     def elevation(self) -> Elevation | None:

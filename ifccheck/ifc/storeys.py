@@ -19,6 +19,7 @@ class Storeys:
         found = [(_elevation(context, entity), entity) for entity in _entities(context)]
         found.sort(key=lambda pair: (pair[0], pair[1].id()))
         self._names = {entity.id(): _name(entity) for _, entity in found}
+        self._by_structure: dict[int, str] = {}
         self.all = tuple(Storey(_name(entity), elevation) for elevation, entity in found)
 
     def name_of(self, step_id: int) -> str:
@@ -26,10 +27,11 @@ class Storeys:
         structure = self._relations.container(step_id)
         if structure is None:
             return ""
-        for spatial in (structure, *self._relations.ancestors(structure)):
-            if spatial in self._names:
-                return self._names[spatial]
-        return ""
+        if structure not in self._by_structure:
+            around = (structure, *self._relations.ancestors(structure))
+            found = (self._names[spatial] for spatial in around if spatial in self._names)
+            self._by_structure[structure] = next(found, "")
+        return self._by_structure[structure]
 
 
 def _entities(context: Context) -> list[Entity]:
