@@ -1,0 +1,108 @@
+"""A whole run on a frame of 1,980 beams and 51,000 bars, against opening the same file.
+
+    python -m tests.benchmarks.whole_run [FRAME.ifc]
+
+Prints ratios of processor time within this one run. Without a file, one is written by the
+frame generator that lies beside the checkout.
+"""
+
+from __future__ import annotations
+
+import itertools
+import subprocess
+import sys
+import tempfile
+import time
+from collections.abc import Callable
+from pathlib import Path
+from typing import Any
+
+GENERATOR = Path(__file__).resolve().parents[2].parent / "shared" / "bench" / "frame_model.py"
+BRIEF = """
+[basis]
+standard = "csa-a23.3-14"
+concrete_unit_weight = "24 kN/m3"
+[defaults]
+bar_yield = "500 MPa"
+stirrup_yield = "500 MPa"
+aggregate_size = "20 mm"
+supports = ["pinned", "pinned"]
+[cases.floor]
+nature = "imposed"
+category = "office"
+[cases.plant]
+nature = "imposed"
+rated = true
+[[loads]]
+case = "floor"
+where = "IfcBeam"
+line = "12 kN/m"
+[[loads]]
+case = "plant"
+where = "IfcBeam"
+point = "20 kN"
+at = "40 %"
+"""
+ROUNDS = 3
+
+
+def main() -> None:
+    """Write, time and print."""
+    with tempfile.TemporaryDirectory() as folder:
+        model = Path(sys.argv[1]) if len(sys.argv) > 1 else _written(Path(folder))
+        brief = Path(folder) / "brief.toml"
+        brief.write_text(BRIEF, encoding="utf-8")
+        _warm()
+        opening = min(_timed(lambda: _open(model))[0] for _ in range(ROUNDS))
+        print(f"ifcopenshell.open: {opening:.2f} s of processor time, the measure of what follows")
+        best: dict[str, float] = {}
+        for _ in range(ROUNDS):
+            for stage, spent in _stages(model, brief, Path(folder) / "out"):
+                best[stage] = min(best.get(stage, spent), spent)
+        for stage, spent in best.items():
+            print(f"{stage:<45} {spent / opening:5.2f} x open")
+        print(f"{'whole run without HTML':<45} {sum(best.values()) / opening:5.2f} x open")
+
+
+def _written(folder: Path) -> Path:
+    model = folder / "frame.ifc"
+    size = ["--storeys", "9", "--bx", "10", "--by", "10"]
+    subprocess.run([sys.executable, str(GENERATOR), str(model), *size], check=True)
+    return model
+
+
+def _open(model: Path) -> Any:
+    import ifcopenshell
+
+    return ifcopenshell.open(str(model))
+
+
+def _warm() -> None:
+    """Load every library once, so that no stage pays for it."""
+    import pandas  # noqa: F401
+
+    import ifccheck.pipeline  # noqa: F401
+
+
+def _timed(call: Callable[[], Any]) -> tuple[float, Any]:
+    began = time.process_time()
+    found = call()
+    return time.process_time() - began, found
+
+
+def _stages(model: Path, brief: Path, out: Path) -> list[tuple[str, float]]:
+    from ifccheck import pipeline
+
+    marks: list[tuple[float, str]] = []
+
+    def say(stage: str) -> None:
+        marks.append((time.process_time(), stage.split()[0]))
+
+    run = pipeline.rate([model], brief, say)
+    pipeline.publish(run, out, ("model", "csv", "json"), say)
+    marks.append((time.process_time(), ""))
+    return [(name, end - at) for (at, name), (end, _) in itertools.pairwise(marks)]
+
+
+if __name__ == "__main__":
+    main()
