@@ -23,8 +23,32 @@ _CAUTION = (
 )
 
 
+class _OneLineGroup(click.Group):
+    """Tells a wrong command line in one line, as every other error is told."""
+
+    def main(self, *args: Any, **extra: Any) -> Any:
+        """Run a command and leave with its exit status."""
+        try:
+            status = super().main(*args, **extra | {"standalone_mode": False})
+        except click.exceptions.NoArgsIsHelpError as error:
+            error.show()
+            sys.exit(error.exit_code)
+        except click.UsageError as error:
+            of = error.ctx.command_path if error.ctx else "ifccheck"
+            _tell(f"{error.format_message()} See '{of} --help'.")
+            sys.exit(error.exit_code)
+        except click.Abort:
+            _tell("interrupted")
+            sys.exit(1)
+        sys.exit(status if isinstance(status, int) else 0)
+
+
 @click.group(
-    context_settings={"help_option_names": ["-h", "--help"]}, epilog=_CAUTION, no_args_is_help=True
+    name="ifccheck",
+    cls=_OneLineGroup,
+    context_settings={"help_option_names": ["-h", "--help"]},
+    epilog=_CAUTION,
+    no_args_is_help=True,
 )
 @click.version_option(__version__, prog_name="ifccheck")
 def main() -> None:
@@ -141,7 +165,11 @@ def _guarded(call: Callable[[], Any]) -> Any:
     try:
         return call()
     except IfccheckError as error:
-        message = " ".join(str(error).split())
-        printable = "".join(c if c.isprintable() else "?" for c in message)
-        click.echo(f"ifccheck: {printable}", err=True)
+        _tell(str(error))
         sys.exit(error.exit_status)
+
+
+def _tell(message: str) -> None:
+    """Say what is wrong, on one line of standard error."""
+    printable = "".join(c if c.isprintable() else "?" for c in " ".join(message.split()))
+    click.echo(f"ifccheck: {printable}", err=True)

@@ -104,7 +104,7 @@ def rate(models: Sequence[Path], brief_path: Path, say: Say = lambda _: None) ->
 def make_plan(brief_path: Path) -> Plan:
     """Read the brief with the standard, cases and combinations that it names."""
     brief = load_brief(brief_path)
-    standard = find_standard(brief.basis.standard)
+    standard = _standard(brief)
     cases = cases_of(brief)
     stated = combinations_of(brief)
     strength = [c for c in stated if c.kind == "strength"] or [
@@ -120,11 +120,18 @@ def make_plan(brief_path: Path) -> Plan:
     )
 
 
+def _standard(brief: Brief) -> Standard:
+    try:
+        return find_standard(brief.basis.standard)
+    except BriefError as error:
+        raise BriefError(f"{brief.at('basis.standard')}: {error}") from None
+
+
 def _shear_method(brief: Brief, standard: Standard) -> str:
     method = brief.basis.shear_method or standard.shear_methods[0]
     if method not in standard.shear_methods:
         raise BriefError(
-            f"{brief.file_name}: basis.shear_method '{method}' is not offered by {standard.id}:"
+            f"{brief.at('basis.shear_method')}: '{method}' is not offered by {standard.id}:"
             f" use {' or '.join(standard.shear_methods)}"
         )
     return method
@@ -132,10 +139,14 @@ def _shear_method(brief: Brief, standard: Standard) -> str:
 
 def read_models(models: Sequence[Path], brief: Brief | None, say: Say) -> tuple[Read, ...]:
     """Open and read the models; their names must differ, since results are named after them."""
-    names = [output_name(path) for path in models]
-    for name in names:
-        if names.count(name) > 1:
-            raise UsageError(f"{name}: two models of this name would write the same results")
+    known: dict[str, Path] = {}
+    for path in models:
+        other = known.setdefault(output_name(path), path)
+        if other is not path:
+            raise UsageError(
+                f"{path}: would write results of the same names as {other}: give each model once,"
+                " and rate models of one name into different folders"
+            )
     return tuple(_read(path, brief, say) for path in models)
 
 
@@ -156,10 +167,13 @@ def _mapping(brief: Brief | None) -> dict[str, str]:
 def find_beams(read: Read, plan: Plan) -> Found:
     """Keys of the beams that each mark and query of the brief reaches in a model."""
     beams = read.model.beams
-    return {
-        place: select(read.opened, beams, part.beams, part.where)
-        for place, part in selections(plan.brief, plan.schedule).items()
-    }
+    found: dict[str, tuple[str, ...]] = {}
+    for place, part in selections(plan.brief, plan.schedule).items():
+        try:
+            found[place] = select(read.opened, beams, part.beams, part.where)
+        except BriefError as error:
+            raise BriefError(f"{plan.brief.at(place)}: {error}") from None
+    return found
 
 
 def rate_model(read: Read, matches: Matches, plan: Plan, found: Sequence[Found], say: Say) -> Rated:

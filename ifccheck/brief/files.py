@@ -19,9 +19,13 @@ def read_bytes(path: Path, where: str) -> bytes:
             )
         return path.read_bytes()
     except FileNotFoundError:
-        raise BriefError(f"{where}: there is no file {path}") from None
+        raise BriefError(f"{where}: there is no file {path}; check the path") from None
+    except IsADirectoryError:
+        raise BriefError(f"{where}: {path} is a folder; give the file in it") from None
     except OSError as error:
-        raise BriefError(f"{where}: cannot be read: {error.strerror}") from None
+        raise BriefError(
+            f"{where}: cannot be read ({error.strerror}); check its permissions"
+        ) from None
 
 
 def decoded(content: bytes, file_name: str) -> str:

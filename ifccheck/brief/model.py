@@ -189,7 +189,11 @@ class Brief:
     def where(self, entry: Entry, key: str = "") -> str:
         """File, place and line of an entry, for an error."""
         place = f"{entry.place}.{key}" if key else entry.place
-        line = self.lines.get(place, self.lines.get(entry.place))
+        return self.at(place, self.lines.get(entry.place))
+
+    def at(self, place: str, otherwise: int | None = None) -> str:
+        """File, place and line of a key, for an error."""
+        line = self.lines.get(place, otherwise)
         return f"{self.file_name}: {place}" + ("" if line is None else f" (line {line})")
 
 

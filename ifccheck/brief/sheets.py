@@ -14,6 +14,7 @@ from ifccheck.errors import BriefError
 GREATEST_ROWS, GREATEST_COLUMNS = 100_000, 200
 GREATEST_UNPACKED = 512 * 1024 * 1024
 GREATEST_EXPANSION = 200
+_SAVE = "save the table again as .xlsx or .csv"
 
 Rows = list[tuple[int, list[str]]]
 
@@ -52,7 +53,9 @@ def _xlsx(path: Path) -> list[list[str]]:
     try:
         book = openpyxl.load_workbook(io.BytesIO(content), read_only=True, data_only=False)
     except Exception as error:  # openpyxl raises whatever its parts raise
-        raise BriefError(f"{path.name}: not a readable XLSX workbook: {_oneline(error)}") from None
+        raise BriefError(
+            f"{path.name}: not a readable XLSX workbook ({_oneline(error)}); {_SAVE}"
+        ) from None
     sheet = _schedule_sheet(book, path.name)
     try:
         return [
@@ -60,7 +63,9 @@ def _xlsx(path: Path) -> list[list[str]]:
             for row in sheet.iter_rows(values_only=True, max_row=GREATEST_ROWS + 1)
         ]
     except Exception as error:
-        raise BriefError(f"{path.name}: not a readable XLSX sheet: {_oneline(error)}") from None
+        raise BriefError(
+            f"{path.name}: not a readable XLSX sheet ({_oneline(error)}); {_SAVE}"
+        ) from None
 
 
 def _oneline(error: Exception) -> str:
@@ -98,7 +103,9 @@ def _check_archive(content: bytes, file_name: str) -> None:
                 if info.filename.endswith((".xml", ".rels")):
                     _check_entities(archive.read(info), file_name)
     except (zipfile.BadZipFile, NotImplementedError, RuntimeError, OSError) as error:
-        raise BriefError(f"{file_name}: not an XLSX workbook: {_oneline(error)}") from None
+        raise BriefError(
+            f"{file_name}: not an XLSX workbook ({_oneline(error)}); {_SAVE}"
+        ) from None
 
 
 def _check_entities(xml: bytes, file_name: str) -> None:

@@ -83,7 +83,8 @@ def _answer(opened: Opened, beams: Sequence[Beam], query: str) -> set[str]:
         at = getattr(error, "column", None)
         spot = f" at character {at}" if isinstance(at, int) and at > 0 else ""
         raise BriefError(
-            f"{place} cannot be understood{spot}: it is no element query of ifcopenshell"
+            f"{place} cannot be understood{spot}: write an element query of ifcopenshell, such as"
+            ' IfcBeam, location="Level 1"'
         ) from error
     _require_known_classes(opened, tree, place)
     if not beams:
@@ -94,7 +95,9 @@ def _answer(opened: Opened, beams: Sequence[Beam], query: str) -> set[str]:
         found = selector.filter_elements(opened.file, query, elements=candidates)
     except (LarkError, re.error) as error:
         detail = str(error.__context__ or error).splitlines()[0]
-        raise BriefError(f"{place} cannot be answered in {opened.file_name}: {detail}") from error
+        raise BriefError(
+            f"{place} cannot be answered in {opened.file_name} ({detail}): correct it"
+        ) from error
     return {keys[entity.id()] for entity in found if entity.id() in keys}
 
 
@@ -107,7 +110,8 @@ def _require_known_classes(opened: Opened, tree: Any, place: str) -> None:
             schema.declaration_by_name(name)
         except RuntimeError as error:
             raise BriefError(
-                f"{place} names the class {name}, which {opened.file.schema} does not have"
+                f"{place} names the class {name}, which {opened.file.schema} does not have: write"
+                " IfcBeam, or another class of that schema"
             ) from error
 
 
