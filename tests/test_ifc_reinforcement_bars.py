@@ -14,7 +14,12 @@ import numpy as np
 import pytest
 
 from ifccheck.beam import Anchor
+from ifccheck.ifc.bar_chains import follow_chains
 from ifccheck.ifc.bar_paths import Path, path_length, sample
+from ifccheck.ifc.context import make_context
+from ifccheck.ifc.lexer import scan
+from ifccheck.ifc.reinforcement import read_reinforcement
+from ifccheck.ifc.step_table import make_step_table
 from tests.barred_beams import HEIGHT, LENGTH, Curve, ModelWithBars, bent, straight
 
 # CSA G30.18: nominal diameter [mm] and area [mm2], published
@@ -66,8 +71,8 @@ def test_a_bar_drawn_from_the_end_to_the_start_is_the_same() -> None:
     (bars,) = model.read(beam).bars
     assert bars.count == 1
     assert "modelled twice" in model.read(beam).remarks
-    assert f"#{first.id()}" in model.read(beam).remarks
     assert f"#{second.id()}" in model.read(beam).remarks
+    assert f"#{first.id()}" not in model.read(beam).remarks
     assert (bars.start_anchor, bars.end_anchor) == (Anchor.STRAIGHT, Anchor.HOOK)
     assert (bars.start, bars.end) == pytest.approx((100.0, 5900.0 + 8.0))
 
@@ -489,3 +494,41 @@ def test_heights_are_measured_from_the_soffit() -> None:
     beam = model.beam(origin=(0.0, 0.0, 9000.0))
     model.bars(beam, straight(50, 5950, 0, HEIGHT - 60.0))
     assert model.read(beam).bars[0].z == pytest.approx(540.0)
+
+
+@pytest.mark.parametrize("unit", ["mm", "m", "in"])
+def test_following_many_statements_at_once_reads_the_same(unit: str) -> None:
+    """The plainest bars are followed through the file's text, all others through ifcopenshell."""
+    model = ModelWithBars(unit=unit)
+    beams = [model.beam(origin=(1000.0, y, 3000.0), along=(1.0, 0.5, 0.1)) for y in (0.0, 2000.0)]
+    for beam in beams:
+        model.bars(beam, straight(50, 5950, -90, 60), square_hook(20.0, 250.0), diameter=20.0)
+        solid = model.swept(straight(0, 2000, 0, 0), 16.0)
+        items = model.mapped(solid, [(50.0, 0.0, 540.0), (3000.0, 0.0, 540.0)])
+        model.aggregate(beam, [model.bar([item], 16.0, beam, Name="it's #7") for item in items])
+        model.aggregate(beam, [model.bar(items, 16.0, beam)])
+    moved, turned = model.file.by_type("IfcReinforcingBar")[:2]
+    axes = moved.ObjectPlacement.RelativePlacement
+    axes.Location.Coordinates = (1.5e-3, 0.0, -1.25)
+    turned.ObjectPlacement.RelativePlacement = model.file.create_entity(
+        "IfcAxis2Placement3D",
+        model.point((0.0, 0.0, 0.0)),
+        model.direction((0, 0, 1)),
+        model.direction((1, 1e-3, 0)),
+    )
+    data = model.file.to_string().encode()
+    statements = make_step_table(data, scan(data))
+    assert statements is not None
+    context = make_context(model.file, "IFC4")
+    products = model.file.by_type("IfcReinforcingBar")
+    chains = list(follow_chains(statements, [product.id() for product in products]))
+    assert chains[1] is None
+    assert sum(chain is not None for chain in chains) > 4
+    assert read_reinforcement(context, model.frames, {}, statements) == read_reinforcement(
+        context, model.frames, {}
+    )
+
+
+def test_text_that_hides_what_it_is_is_not_followed() -> None:
+    data = ModelWithBars().file.to_string().encode().replace(b"DATA;", b"DATA; /* #1=IFCX( */")
+    assert make_step_table(data, scan(data)) is None

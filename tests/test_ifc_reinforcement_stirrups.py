@@ -13,7 +13,7 @@ import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
 
-from ifccheck.ifc.stirrup_sets import Place, zones_of_one_spacing
+from ifccheck.ifc.stirrup_sets import zones_of_one_spacing
 from tests.barred_beams import (
     LENGTH,
     Curve,
@@ -282,12 +282,6 @@ def test_stirrups_in_a_low_and_in_a_high_place_of_one_map_are_told_apart() -> No
     assert f"#{bars[0].id()}" not in found.reasons
 
 
-def place(x: float, legs: int = 2) -> Place:
-    return Place(
-        x, legs, legs * TEN, 10.0, True, 0, 35.0, 565.0, 115.0, np.array([0], dtype=np.intp)
-    )
-
-
 @settings(max_examples=300, deadline=None)
 @given(
     st.lists(st.tuples(st.floats(20.0, 900.0), st.sampled_from([2, 4])), min_size=2, max_size=25),
@@ -297,17 +291,21 @@ def place(x: float, legs: int = 2) -> Place:
 def test_zones_cover_without_gaps_and_promise_no_more_than_there_is(
     steps: list[tuple[float, int]], first: float, beyond: float
 ) -> None:
-    xs = np.cumsum([first, *(gap for gap, _ in steps[1:])])
-    places = [place(float(x), legs) for x, (_, legs) in zip(xs, steps, strict=True)]
-    length = float(xs[-1]) + beyond
-    zones = zones_of_one_spacing(places, length)
+    xs = np.cumsum([first, *(gap for gap, _ in steps[1:])]).tolist()
+    legs = [count for _, count in steps]
+    areas = [count * TEN for count in legs]
+    length = xs[-1] + beyond
+    zones = zones_of_one_spacing(xs, areas, legs, length)
     assert all(one.end == other.start for one, other in pairwise(zones))
     assert 0.0 <= zones[0].start <= xs[0]
     assert xs[-1] <= zones[-1].end <= length
-    for one, other in pairwise(places):
-        (zone,) = [z for z in zones if z.start <= one.x and other.x <= z.end]
-        assert zone.spacing >= other.x - one.x
-        assert zone.least.area <= min(one.area, other.area)
+    for index, (x, following) in enumerate(pairwise(xs)):
+        (zone,) = [z for z in zones if z.first <= index < z.last]
+        assert zone.start <= x
+        assert following <= zone.end
+        assert zone.spacing >= following - x
+        least = min(areas[zone.first : zone.last + 1])
+        assert least <= min(areas[index : index + 2])
 
 
 def test_thirty_four_stirrups_of_an_open_model(open_models: object) -> None:

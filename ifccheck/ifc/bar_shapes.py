@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 from dataclasses import dataclass
+from typing import Any
 
 import numpy as np
 
@@ -57,6 +58,17 @@ class BarShapes:
                 raise
             return self._representation(axis, 0)
 
+    def of_item(self, item: int, source: int, target: int, file: Any) -> tuple[Strand, ...]:
+        """Return the bars of a shape that is one item, by STEP ids; mapped where source is not 0.
+
+        Raises UnreadableError where the item is of a kind that is not read.
+        """
+        if not source:
+            known = self._solids.get(item)
+            return known or self._item(file.by_id(item), 0)
+        known = self._mapped_strands.get((source, target))
+        return known or self._mapped(file.by_id(source), file.by_id(target), 0)
+
     def _representation(self, representation: Entity | None, depth: int) -> tuple[Strand, ...]:
         items: tuple[Entity, ...] = ()
         if representation is not None:
@@ -89,14 +101,16 @@ class BarShapes:
         return _moved(strands, self._placements.axes(source.get_argument(0)))
 
     def _solid(self, item: Entity) -> Strand:
-        if item.is_a("IfcSweptDiskSolid"):
-            path = read_swept_path(item[0], item[3], item[4], self._units)
-            return self._strand(path, IDENTITY, 2.0 * item[1] * self._units.length)
-        if item.is_a("IfcExtrudedAreaSolid"):
+        kind = item.is_a()
+        if kind in ("IfcSweptDiskSolid", "IfcSweptDiskSolidPolygonal"):
+            argument = item.get_argument
+            path = read_swept_path(argument(0), argument(3), argument(4), self._units)
+            return self._strand(path, IDENTITY, 2.0 * argument(1) * self._units.length)
+        if kind == "IfcExtrudedAreaSolid":
             return self._extruded(item)
         if item.is_a("IfcCurve"):
             return self._strand(read_path(item, self._units), IDENTITY, None)
-        raise UnreadableError(f"has a body of kind {item.is_a()}, which is not read yet")
+        raise UnreadableError(f"has a body of kind {kind}, which is not read yet")
 
     def _strand(self, path: Path, matrix: Matrix, diameter: float | None) -> Strand:
         self.paths.append(path)

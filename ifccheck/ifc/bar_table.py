@@ -4,10 +4,12 @@ from __future__ import annotations
 
 from collections.abc import Iterable, Mapping, Sequence
 from dataclasses import dataclass
+from itertools import repeat
 from typing import NamedTuple
 
 import numpy as np
 
+from ifccheck.ifc.bar_chains import Chain, follow_chains
 from ifccheck.ifc.bar_data import BarData
 from ifccheck.ifc.bar_paths import Floats, Ints, Path
 from ifccheck.ifc.bar_shapes import BarShapes, Strand
@@ -15,6 +17,7 @@ from ifccheck.ifc.bar_sizes import BarSize, Grade
 from ifccheck.ifc.context import Context
 from ifccheck.ifc.entity import Entity, UnreadableError
 from ifccheck.ifc.placements import IDENTITY, Matrix
+from ifccheck.ifc.step_table import StepTable
 
 NO_OFFSET = (0.0, 0.0, 0.0)
 
@@ -84,13 +87,18 @@ class _Gathering:
         """Bar, path, outer matrix and inner matrix of each strand."""
         self.offsets: list[Sequence[float]] = []
         """Place of each bar in its outer matrix, in units of the model."""
-        self._whole_place = self.outer.index(IDENTITY)
+        self._whole_place = self._parents[0] = self.outer.index(IDENTITY)
 
-    def add(self, product: Entity) -> None:
+    def add(self, product: Entity, chain: Chain | None) -> None:
         """Add one product; raises UnreadableError."""
         argument = product.get_argument
-        strands = self.shapes.of(argument(6))
-        outer, offset = self._placement(argument(5))
+        if chain is None:
+            strands = self.shapes.of(argument(6))
+            outer, offset = self._placement(argument(5))
+        else:
+            item, file = (chain.item, chain.source, chain.target), self._context.file
+            strands = self.shapes.of_item(*item, file)
+            outer, offset = self._parent(chain.parent), chain.move
         step_id, name = product.id(), argument(2) or argument(7) or ""
         swept = strands[0].diameter if len(strands) == 1 else _thinnest(strands)
         data = self.data.of(product, step_id, name, swept)
@@ -110,13 +118,15 @@ class _Gathering:
         if moved is None:
             return self.outer.index(self._context.placements.placement(placement)), NO_OFFSET
         parent = placement.get_argument(0)
-        if parent is None:
-            return self._whole_place, moved
-        step_id = parent.id()
+        return self._parent(0 if parent is None else parent.id()), moved
+
+    def _parent(self, step_id: int) -> int:
+        """The outer matrix of a placement, by its STEP id; 0 is the building itself."""
         if step_id not in self._parents:
-            matrix = self._context.placements.placement(parent)
+            placement = self._context.file.by_id(step_id)
+            matrix = self._context.placements.placement(placement)
             self._parents[step_id] = self.outer.index(matrix)
-        return self._parents[step_id], moved
+        return self._parents[step_id]
 
 
 def _thinnest(strands: Sequence[Strand]) -> float | None:
@@ -142,13 +152,21 @@ def _only_moved(placement: Entity) -> Sequence[float] | None:
     return moved if len(moved) == 3 else None
 
 
-def gather_bars(context: Context, products: Iterable[Entity]) -> BarTable:
-    """Gather bars: their data, and the centre line of each strand with its place."""
+def gather_bars(
+    context: Context, products: Sequence[Entity], statements: StepTable | None = None
+) -> BarTable:
+    """Gather bars: their data, and the centre line of each strand with its place.
+
+    With the ``statements`` of the file the plainest bars are followed all at once.
+    """
     found = _Gathering(context)
     unreadable: dict[int, str] = {}
-    for product in products:
+    chains: Iterable[Chain | None] = repeat(None, len(products))
+    if statements is not None:
+        chains = follow_chains(statements, [product.id() for product in products])
+    for product, chain in zip(products, chains, strict=True):
         try:
-            found.add(product)
+            found.add(product, chain)
         except UnreadableError as error:
             unreadable[product.id()] = str(error)
     return _table(found, unreadable, context.units.length)

@@ -162,18 +162,13 @@ def group(labels: Ints, values: Floats, gap: float) -> Ints:
     return found
 
 
-def equal_bars(labels: Ints, runs: Runs, height: Floats) -> list[Ints]:
+def equal_bars(labels: Ints, runs: Runs, height: Floats) -> tuple[Ints, Ints]:
     """Group runs of one label that lie in one layer with equal ends.
 
-    Returns the runs of each group from right to left across the beam, groups from the
-    bottom up.
+    Returns the runs in the order of groups, in each from right to left across the beam, and the
+    place at which each group begins.
     """
     found = group(group(labels, height, SAME_LAYER), runs.start, SAME_END)
     found = group(found, runs.end, SAME_END)
     order = np.lexsort((runs.y, found))
-    return list(np.split(order, np.flatnonzero(np.diff(found[order])) + 1)) if len(order) else []
-
-
-def apart(places: Floats) -> Bools:
-    """Whether each of sorted places is apart from the one before: else it is one bar twice."""
-    return np.concatenate(([True], np.diff(places) >= SAME_BAR))
+    return order, np.flatnonzero(np.diff(found[order], prepend=-1))

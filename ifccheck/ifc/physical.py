@@ -16,14 +16,14 @@ from ifccheck.ifc.bars import (
     ALONG,
     LEAST_RUN,
     LONGEST_CHORD,
+    SAME_BAR,
     Runs,
-    apart,
     equal_bars,
     find_runs,
     settle_heights,
 )
 from ifccheck.ifc.stirrup_sets import (
-    Place,
+    Places,
     Ties,
     Zone,
     find_ties,
@@ -40,6 +40,7 @@ SLOPING = 10.0
 """A bar that rises by more than this [mm] is remarked on."""
 END_TOLERANCE = 5.0
 """A stirrup may lie beyond the end of its beam by this [mm]."""
+PARTIAL = "its legs do not run through the height of the section: not counted"
 OUTSIDE = "lies outside the concrete of the beam"
 MAIN_ROLES, TIE_ROLES = frozenset({"MAIN", "EDGE"}), frozenset({"LIGATURE", "RING"})
 
@@ -225,38 +226,67 @@ def _longitudinal(model: Measured, runs: Runs) -> dict[int, tuple[Bars, ...]]:
     )
     bent = runs.row[runs.poor_bend]
     model.remark(bent.tolist(), "ends in a bend short of a standard hook: taken as straight")
+    labels = _labels(model, runs, beam, steep)
+    found: dict[int, list[Bars]] = {}
+    for members, bars in _equal(model, runs, labels, height):
+        if not steep[members[0]]:
+            found.setdefault(int(beam[members[0]]), []).append(bars)
+    return {
+        key: tuple(sorted(one, key=lambda b: (b.z, b.start, b.end))) for key, one in found.items()
+    }
+
+
+def _labels(model: Measured, runs: Runs, beam: Ints, steep: Bools) -> Ints:
+    """Number the runs so that only those of one beam, size, grade and anchors have one number."""
     table, bar = model.places.table, model.bar[runs.row]
     sizes = np.array([one.size for one in table.bars], dtype=np.intp)[bar]
     grades = np.array([one.grade for one in table.bars], dtype=np.intp)[bar]
-    keys = np.stack([steep, beam, sizes, grades, runs.start_hook, runs.end_hook], axis=1)
-    labels = np.unique(keys, axis=0, return_inverse=True)[1].reshape(-1)
-    found: dict[int, list[Bars]] = {}
-    for members in equal_bars(labels, runs, height):
-        if not steep[members[0]]:
-            kept = members[apart(runs.y[members])]
-            if len(kept) < len(members):
-                model.remark(runs.row[members].tolist(), "modelled twice, counted once")
-            found.setdefault(int(beam[members[0]]), []).append(_bars(model, runs, height, kept))
-    return {key: tuple(sorted(one, key=lambda b: (b.z, b.start))) for key, one in found.items()}
+    label = beam * len(table.sizes) + sizes
+    label = label * len(table.grades) + grades
+    return ((label * 2 + runs.start_hook) * 2 + runs.end_hook) * 2 + steep
 
 
-def _bars(model: Measured, runs: Runs, height: Floats, members: Ints) -> Bars:
+def _equal(
+    model: Measured, runs: Runs, labels: Ints, height: Floats
+) -> Iterator[tuple[Ints, Bars]]:
+    """Groups of equal bars, each with the runs that it is made of."""
+    order, first = equal_bars(labels, runs, height)
+    if not len(order):
+        return
+    apart = np.ones(len(order), dtype=bool)
+    apart[1:] = np.diff(runs.y[order]) >= SAME_BAR
+    apart[first] = True
+    model.remark(runs.row[order[~apart]].tolist(), "modelled twice, counted once")
+    order, first = order[apart], first - np.cumsum(~apart)[first]
+    count = np.diff(first, append=len(order))
+    columns = (
+        np.maximum.reduceat(runs.start[order], first),
+        np.minimum.reduceat(runs.end[order], first),
+        np.add.reduceat(height[order], first) / count,
+    )
+    for members, start, end, z in zip(
+        np.split(order, first[1:]), *(column.tolist() for column in columns), strict=True
+    ):
+        yield members, _bars(model, runs, members, start, end, z)
+
+
+def _bars(model: Measured, runs: Runs, members: Ints, start: float, end: float, z: float) -> Bars:
     first = int(members[0])
-    row = int(runs.row[first])
-    size = model.places.table.sizes[model.places.table.bars[int(model.bar[row])].size]
+    rows = runs.row[members].tolist()
+    size = model.places.table.sizes[model.places.table.bars[int(model.bar[rows[0]])].size]
     return Bars(
-        count=len(members),
+        count=len(rows),
         diameter=size.diameter,
         area=size.area,
-        start=float(runs.start[members].max()),
-        end=float(runs.end[members].min()),
-        z=float(height[members].mean()),
+        start=start,
+        end=end,
+        z=z,
         ys=tuple(runs.y[members].tolist()),
-        yield_strength=model.grade(row),
+        yield_strength=model.grade(rows[0]),
         start_anchor=Anchor.HOOK if runs.start_hook[first] else Anchor.STRAIGHT,
         end_anchor=Anchor.HOOK if runs.end_hook[first] else Anchor.STRAIGHT,
         designation=size.designation,
-        origin=model.names(runs.row[members].tolist()),
+        origin=model.names(rows),
     )
 
 
@@ -267,51 +297,65 @@ def _stirrups(model: Measured, legged: Ties) -> dict[int, tuple[Stirrups, ...]]:
     grades = np.array([one.grade for one in table.bars], dtype=np.intp)[bar]
     beam = model.rows.beam[legged.row]
     thick = model.places.diameter[model.rows.strand[legged.row]]
-    found, twice = gather_places(legged, beam, thick, areas[sizes], grades)
+    if not len(legged.row):
+        return {}
+    places, twice = gather_places(legged, beam, thick, areas[sizes], grades)
     model.remark(legged.row[twice].tolist(), "modelled twice, counted once")
-    return {key: tuple(_beam_stirrups(model, key, places)) for key, places in found.items()}
+    return {key: tuple(zones) for key, zones in _zones(model, places)}
 
 
-def _beam_stirrups(model: Measured, beam: int, places: Sequence[Place]) -> Iterator[Stirrups]:
-    partial = [row for place in places if place.legs == 0 for row in place.rows.tolist()]
-    model.remark(partial, "its legs do not run through the height of the section: not counted")
-    whole = [place for place in places if place.legs > 0]
-    zones = zones_of_one_spacing(whole, float(model.places.frames.length[beam]))
-    if len(whole) == 1:
-        model.remark(whole[0].rows.tolist(), "the only stirrup: not counted")
-    for zone in zones:
-        yield _zone_stirrups(model, beam, zone)
+def _zones(model: Measured, places: Places) -> Iterator[tuple[int, list[Stirrups]]]:
+    """The stirrups of each beam, zone by zone."""
+    lengths = model.places.frames.length
+    steel = places.steel()
+    for members in np.split(np.arange(len(places.x)), np.flatnonzero(np.diff(places.beam)) + 1):
+        whole = members[places.legs[members] > 0]
+        for place in members[places.legs[members] == 0].tolist():
+            model.remark(places.ties_of(place, place), PARTIAL)
+        if len(whole) == 1:
+            model.remark(places.ties_of(whole[0], whole[0]), "the only stirrup: not counted")
+        beam = int(places.beam[members[0]])
+        zones = zones_of_one_spacing(
+            places.x[whole].tolist(),
+            places.area[whole].tolist(),
+            steel[whole].tolist(),
+            float(lengths[beam]),
+        )
+        yield beam, [_zone_stirrups(model, places, whole, beam, zone) for zone in zones]
 
 
-def _zone_stirrups(model: Measured, beam: int, zone: Zone) -> Stirrups:
-    least = zone.least
-    bar = model.places.table.bars[int(model.bar[least.rows[0]])]
+def _zone_stirrups(model: Measured, places: Places, whole: Ints, beam: int, zone: Zone) -> Stirrups:
+    held = whole[zone.first : zone.last + 1]
+    least = int(held[places.area[held].argmin()])
+    ties = [tie for place in held.tolist() for tie in places.ties_of(place, place)]
+    legs = int(places.legs[least])
+    bar = model.places.table.bars[int(model.bar[places.ties_of(least, least)[0]])]
     return Stirrups(
         start=zone.start,
         end=zone.end,
         spacing=zone.spacing,
-        diameter=least.diameter,
-        leg_area=least.area / least.legs,
-        legs=least.legs,
-        closed=all(place.closed for place in zone.places),
-        yield_strength=_stirrup_yield(model, beam, zone),
-        bottom=min(place.bottom for place in zone.places),
-        top=max(place.top for place in zone.places),
-        half_width=max(place.half_width for place in zone.places),
+        diameter=float(places.diameter[least]),
+        leg_area=float(places.area[least]) / legs,
+        legs=legs,
+        closed=bool(places.closed[held].all()),
+        yield_strength=_stirrup_yield(model, beam, places.grade[held], ties),
+        bottom=float(places.bottom[held].min()),
+        top=float(places.top[held].max()),
+        half_width=float(places.half_width[held].max()),
         designation=model.places.table.sizes[bar.size].designation,
-        origin=model.names([row for place in zone.places for row in place.rows.tolist()]),
+        origin=model.names(ties),
     )
 
 
-def _stirrup_yield(model: Measured, beam: int, zone: Zone) -> Given | None:
+def _stirrup_yield(model: Measured, beam: int, grades: Ints, ties: Sequence[int]) -> Given | None:
     """The lowest yield strength of a zone's stirrups."""
-    if zone.least.grade >= 0:
-        return model.grade(int(zone.least.rows[0]))
-    grades = [model.grade(row) for place in zone.places for row in place.rows.tolist()]
-    known = [grade for grade in grades if grade is not None]
-    if known and len(known) < len(grades):
+    if grades[0] >= 0 and (grades == grades[0]).all():
+        return model.places.table.grades[int(grades[0])].strength
+    strengths = [model.grade(tie) for tie in ties]
+    known = [strength for strength in strengths if strength is not None]
+    if known and len(known) < len(strengths):
         model.findings.reason(
             beam, "the steel of some of its stirrups is known and of others not", blocking=False
         )
         return None
-    return min(known, key=lambda grade: grade.value, default=None)
+    return min(known, key=lambda strength: strength.value, default=None)

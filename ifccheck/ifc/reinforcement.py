@@ -17,20 +17,25 @@ from ifccheck.ifc.context import BeamFrame, Context
 from ifccheck.ifc.described import read_described
 from ifccheck.ifc.entity import Entity, label
 from ifccheck.ifc.physical import Physical, reduce_bars
+from ifccheck.ifc.step_table import StepTable
 
 SECTIONS = "IfcReinforcementDefinitionProperties"
 
 
 def read_reinforcement(
-    context: Context, hosts: Mapping[int, BeamFrame], mapping: Mapping[str, str]
+    context: Context,
+    hosts: Mapping[int, BeamFrame],
+    mapping: Mapping[str, str],
+    statements: StepTable | None = None,
 ) -> Mapping[int, tuple[Reinforcement, ...]]:
     """Read all reinforcement of beams, by STEP id of the beam.
 
     ``mapping`` tells which property of the project's own holds what: field to "Set.Property".
+    With the ``statements`` of the file many bars are read in half the time.
     """
     sections = _sections(context, hosts)
     described = read_described(context, hosts, mapping)
-    physical, asides = _physical(context, hosts, sections.keys() | described.keys())
+    physical, asides = _physical(context, hosts, sections.keys() | described.keys(), statements)
     found: dict[int, tuple[Reinforcement, ...]] = {}
     for beam in hosts:
         sources = [source[beam] for source in (physical, sections, described) if beam in source]
@@ -59,7 +64,10 @@ def _instances(context: Context, name: str) -> tuple[Entity, ...]:
 
 
 def _physical(
-    context: Context, hosts: Mapping[int, BeamFrame], described: Collection[int]
+    context: Context,
+    hosts: Mapping[int, BeamFrame],
+    described: Collection[int],
+    statements: StepTable | None,
 ) -> tuple[dict[int, Reinforcement], dict[int, tuple[Remark, ...]]]:
     """Bars by beam, and remarks on bars for beams whose reinforcement is described otherwise."""
     if not hosts:
@@ -69,7 +77,7 @@ def _physical(
     finder = Hosts(context.file, context.relations, hosts)
     _tell_meshes(context, finder, frames, findings)
     products, ties = _tied_bars(context, finder)
-    table = gather_bars(context, products)
+    table = gather_bars(context, products, statements)
     places = BarPlaces(table, frames)
     found = find_rows(places, ties)
     _tell_unreadable(table, ties, frames, findings)

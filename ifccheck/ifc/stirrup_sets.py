@@ -5,7 +5,6 @@ from __future__ import annotations
 import math
 from collections.abc import Iterator, Sequence
 from dataclasses import dataclass, replace
-from typing import NamedTuple
 
 import numpy as np
 
@@ -28,8 +27,8 @@ SAME_PLACE, SAME_PLACE_DIAMETERS = 5.0, 1.5
 """Stirrups are at one place along the beam within this [mm], or within this many diameters."""
 SAME_SPACING = 1.05
 """Ratio of spacings up to which gaps make one zone."""
-SAME_STEEL = 1.01
-"""Ratio of areas up to which two places hold the same steel."""
+SAME_STEEL = 0.01
+"""Relative step of areas within which two places hold the same steel."""
 DUPLICATE = 1.0
 """Stirrups of which nothing differs by more than this [mm] are one that is modelled twice."""
 
@@ -118,21 +117,37 @@ def _winding(lines: CentreLines) -> Floats:
     return np.asarray(np.bincount(lines.row, weights=step, minlength=lines.count))
 
 
-class Place(NamedTuple):
-    """All the stirrups at one place along a beam."""
+@dataclass(frozen=True, slots=True)
+class Places:
+    """All the stirrups at one place along a beam, sorted by beam and x (P)."""
 
-    x: float
-    legs: int
-    area: float
+    beam: Ints
+    x: Floats
+    legs: Ints
+    area: Floats
     """Area of all the legs [mm2]."""
-    diameter: float
-    closed: bool
-    grade: int
+    diameter: Floats
+    closed: Bools
+    grade: Ints
     """Index of the steel; -1 where the stirrups here are of several."""
-    bottom: float
-    top: float
-    half_width: float
-    rows: Ints
+    bottom: Floats
+    top: Floats
+    half_width: Floats
+    ties: Ints
+    """The ties, those of one place after those of another."""
+    first_tie: Ints
+    """Where the ties of each place begin, and their number at the end (P + 1)."""
+
+    def ties_of(self, first: int, last: int) -> list[int]:
+        """The ties of some places that follow each other, the last included."""
+        found: list[int] = self.ties[self.first_tie[first] : self.first_tie[last + 1]].tolist()
+        return found
+
+    def steel(self) -> Ints:
+        """A number for each place, the same where legs, area, steel and form are the same."""
+        area = np.rint(np.log(np.maximum(self.area, 1e-3)) / SAME_STEEL).astype(np.intp)
+        key = np.stack([self.legs, area, self.grade, self.closed.astype(np.intp)], axis=1)
+        return np.unique(key, axis=0, return_inverse=True)[1].reshape(-1)
 
 
 @dataclass(frozen=True, slots=True)
@@ -142,52 +157,44 @@ class Zone:
     start: float
     end: float
     spacing: float
-    places: tuple[Place, ...]
-    """The stirrups that bound its gaps."""
-
-    @property
-    def least(self) -> Place:
-        """The place with the least steel."""
-        return min(self.places, key=lambda place: place.area)
+    first: int
+    """The places that bound its gaps, the last included."""
+    last: int
 
 
 def gather_places(
     ties: Ties, beam: Ints, diameter: Floats, area: Floats, grade: Ints
-) -> tuple[dict[int, list[Place]], Ints]:
+) -> tuple[Places, Ints]:
     """Put stirrups at one place of a beam together; arrays are one row per tie.
 
-    Returns the places of each beam, and the ties that are left out as modelled twice.
+    Returns the places, and the ties that are left out as modelled twice.
     """
     place = _same_place(ties, beam, diameter)
     twice = _duplicates(ties, place)
     kept = np.setdiff1d(np.arange(len(place)), twice)
     width = ties.high[:, 0] - ties.low[:, 0]
     order = kept[np.lexsort((width[kept], place[kept]))]
-    places: dict[int, list[Place]] = {}
-    if not len(order):
-        return places, twice
     first = np.flatnonzero(np.diff(place[order], prepend=-1))
-    last = np.concatenate((first[1:], [len(order)])) - 1
+    ends = np.concatenate((first, [len(order)]))
     thick, grades, outside = diameter[order], grade[order], diameter[order] / 2.0
     low, high, legs = ties.low[order], ties.high[order], ties.legs[order]
     least_grade = np.minimum.reduceat(grades, first)
     one_grade = least_grade == np.maximum.reduceat(grades, first)
     reach = np.maximum(high[:, 0], -low[:, 0]) + outside
-    columns = (
-        np.add.reduceat(ties.x[order], first) / (last - first + 1),
-        np.add.reduceat(legs, first).min(axis=1),
-        np.add.reduceat(legs * area[order][:, None], first).min(axis=1),
-        np.minimum.reduceat(thick, first),
-        ties.closed[order[last]],
-        np.where(one_grade, least_grade, -1),
-        np.minimum.reduceat(low[:, 1] - outside, first),
-        np.maximum.reduceat(high[:, 1] + outside, first),
-        np.maximum.reduceat(reach, first),
-        np.split(ties.row[order], first[1:]),
+    places = Places(
+        beam=beam[order[first]],
+        x=np.add.reduceat(ties.x[order], first) / np.diff(ends),
+        legs=np.add.reduceat(legs, first).min(axis=1),
+        area=np.add.reduceat(legs * area[order][:, None], first).min(axis=1),
+        diameter=np.minimum.reduceat(thick, first),
+        closed=ties.closed[order[ends[1:] - 1]],  # the widest
+        grade=np.where(one_grade, least_grade, -1),
+        bottom=np.minimum.reduceat(low[:, 1] - outside, first),
+        top=np.maximum.reduceat(high[:, 1] + outside, first),
+        half_width=np.maximum.reduceat(reach, first),
+        ties=ties.row[order],
+        first_tie=ends,
     )
-    listed = [c if isinstance(c, list) else c.tolist() for c in columns]
-    for owner, *values in zip(beam[order[first]].tolist(), *listed, strict=True):
-        places.setdefault(owner, []).append(Place(*values))
     return places, twice
 
 
@@ -215,7 +222,9 @@ def _duplicates(ties: Ties, place: Ints) -> Ints:
     return np.array(twice, dtype=np.intp)
 
 
-def zones_of_one_spacing(places: Sequence[Place], length: float) -> list[Zone]:
+def zones_of_one_spacing(
+    xs: Sequence[float], areas: Sequence[float], steel: Sequence[int], length: float
+) -> list[Zone]:
     """Divide sorted stirrups into zones of one spacing along a beam of that length [mm].
 
     Consecutive gaps within 5 % make a zone with the greatest as its spacing; a gap that differs
@@ -223,9 +232,9 @@ def zones_of_one_spacing(places: Sequence[Place], length: float) -> list[Zone]:
     single gap that is closer than its neighbours does not make a closer zone. A zone reaches to
     the beam's end where its last stirrup is within a spacing of it, else half a spacing further.
     """
-    if len(places) < 2:
+    if len(xs) < 2:
         return []
-    zones = _without_lone_close_gaps(list(_joined(places)))
+    zones = _without_lone_close_gaps(list(_joined(xs, areas, steel)))
     zones[0] = replace(zones[0], start=_reach(zones[0].start, zones[0].spacing, 0.0, -1.0))
     zones[-1] = replace(zones[-1], end=_reach(zones[-1].end, zones[-1].spacing, length, 1.0))
     return zones
@@ -235,45 +244,27 @@ def _reach(x: float, spacing: float, end: float, sign: float) -> float:
     return end if (end - x) * sign <= spacing else x + sign * spacing / 2.0
 
 
-def _joined(places: Sequence[Place]) -> Iterator[Zone]:
+def _joined(xs: Sequence[float], areas: Sequence[float], steel: Sequence[int]) -> Iterator[Zone]:
     """Join consecutive gaps of one spacing and the same steel."""
-    begin = 0
-    steel = min(places[:2], key=lambda place: place.area)
-    close = wide = places[1].x - places[0].x
-    for index in range(1, len(places) - 1):
-        one, other = places[index], places[index + 1]
-        gap, lesser = other.x - one.x, one if one.area <= other.area else other
-        closest, widest = min(close, gap), max(wide, gap)
-        if widest <= SAME_SPACING * closest and same_steel(steel, lesser):
-            close, wide = closest, widest
+    begin, wide, close, held = 0, 0.0, 0.0, -1
+    for index in range(len(xs) - 1):
+        gap = xs[index + 1] - xs[index]
+        lesser = steel[index] if areas[index] <= areas[index + 1] else steel[index + 1]
+        widest, closest = (gap if gap > wide else wide), (gap if gap < close else close)
+        if index and lesser == held and widest <= SAME_SPACING * closest:
+            wide, close = widest, closest
             continue
-        yield _zone(places[begin : index + 1], wide)
-        begin, steel, close, wide = index, lesser, gap, gap
-    yield _zone(places[begin:], wide)
-
-
-def _zone(places: Sequence[Place], spacing: float) -> Zone:
-    return Zone(places[0].x, places[-1].x, spacing, tuple(places))
-
-
-def same_steel(one: Place, other: Place) -> bool:
-    """Whether two places hold the same legs of the same steel."""
-    return (
-        one.legs == other.legs
-        and one.area <= SAME_STEEL * other.area
-        and other.area <= SAME_STEEL * one.area
-        and one.grade == other.grade
-        and one.closed == other.closed
-    )
+        if index:
+            yield Zone(xs[begin], xs[index], wide, begin, index)
+        begin, wide, close, held = index, gap, gap, lesser
+    yield Zone(xs[begin], xs[-1], wide, begin, len(xs) - 1)
 
 
 def _without_lone_close_gaps(zones: list[Zone]) -> list[Zone]:
     """Give a zone of one gap that is closer than all its neighbours their least spacing."""
     settled = []
     for index, zone in enumerate(zones):
-        beside = [
-            z.spacing for z in (*zones[max(index - 1, 0) : index], *zones[index + 1 : index + 2])
-        ]
-        lone = len(zone.places) == 2 and beside and zone.spacing < min(beside)
+        beside = [z.spacing for z in zones[max(index - 1, 0) : index + 2] if z is not zone]
+        lone = zone.last == zone.first + 1 and beside and zone.spacing < min(beside)
         settled.append(replace(zone, spacing=min(beside)) if lone else zone)
     return settled
