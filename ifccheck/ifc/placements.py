@@ -66,7 +66,10 @@ class Placements:
     def _placed(self, placement: Entity, parent: Matrix) -> Matrix:
         kind = placement.is_a()
         if kind == "IfcLocalPlacement":
-            own = self.axes(need(placement, "RelativePlacement"))
+            relative = placement.get_argument(1)
+            if relative is None:
+                raise UnreadableError(f"{label(placement)} has no RelativePlacement")
+            own = self.axes(relative)
             return parent if own is IDENTITY else parent @ own
         if kind == "IfcGridPlacement":
             return self._on_grid(placement, parent)

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 from collections import defaultdict
 from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass, field
@@ -82,6 +83,16 @@ class Relations:
         return own if type_id is None else own + tuple(self.sets.get(type_id, ()))
 
 
+# The ends of a relation as they are written. Making an object of each of fifty thousand bars,
+# to ask it for its id, takes as long as reading half of the beams.
+ONE_TO_MANY = re.compile(r",#(\d+),\(((?:#\d+,?)+)\)\)$")
+MANY_TO_ONE = re.compile(r",\(((?:#\d+,?)+)\),#(\d+)\)$")
+
+
+def _ids(listed: str) -> list[int]:
+    return [int(reference) for reference in listed[1:].split(",#")]
+
+
 @dataclass
 class _Gathering:
     parts: dict[int, list[int]] = field(default_factory=lambda: defaultdict(list))
@@ -118,14 +129,12 @@ def read_relations(file: Any) -> Relations:
 
 
 def _read_parts(found: _Gathering, relation: Entity) -> None:
-    relating, related = relation.get_argument(4), relation.get_argument(5)
-    if relating is None:
+    match = ONE_TO_MANY.search(relation.to_string())
+    if match is None:
         return
-    whole = relating.id()
-    parts = found.parts[whole]
-    for entity in related or ():
-        part = entity.id()
-        parts.append(part)
+    whole, related = int(match[1]), _ids(match[2])
+    found.parts[whole] += related
+    for part in related:
         found.wholes.setdefault(part, whole)
 
 
@@ -145,11 +154,11 @@ def _read_type(found: _Gathering, relation: Entity) -> None:
 
 
 def _read_material(found: _Gathering, relation: Entity) -> None:
-    relating = relation.get_argument(5)
-    if relating is not None:
-        material = relating.id()
-        for element in relation.get_argument(4) or ():
-            found.materials.setdefault(element.id(), material)
+    match = MANY_TO_ONE.search(relation.to_string())
+    if match is not None:
+        material = int(match[2])
+        for element in _ids(match[1]):
+            found.materials.setdefault(element, material)
 
 
 def _read_sets(found: _Gathering, relation: Entity) -> None:
