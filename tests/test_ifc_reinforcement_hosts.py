@@ -143,6 +143,46 @@ def test_bars_of_a_beam_out_of_scope_that_lie_in_the_beam_are_noticed(made: Mode
     assert "no relation ties" in model.read(beam).reasons
 
 
+def test_bars_of_another_beam_of_the_assembly_are_no_matter_of_this_one(made: Model) -> None:
+    model, beam = made
+    model.bars(beam, straight(50, 5950, 0, 60))
+    unread = model.beam(origin=(0.0, 1000.0, 0.0), host=False)  # its body is not read
+    model.aggregate(unread, [model.bar(straight(50, 5950, 0, 60), 20.0, unread)])
+    assembly(model, beam, unread)
+    found = model.read(beam)
+    assert (found.bars[0].count, found.reasons, found.remarks) == (1, "", "")
+
+
+def test_a_large_assembly_does_not_tell_every_beam_of_every_bar(made: Model) -> None:
+    model, beam = made
+    beams = [beam] + [model.beam(origin=(0.0, 1000.0 * k, 0.0)) for k in range(1, 12)]
+    inside = [model.bar(straight(50, 5950, 0, 60), 20.0, one) for one in beams]
+    outside = model.bar(straight(50, 5950, 0, 2000.0), 20.0, beam)
+    assembly(model, *beams, *inside, outside)
+    for one in beams:
+        found = model.read(one)
+        assert (found.bars[0].count, found.reasons, found.remarks) == (1, "", "")
+
+
+def test_a_bar_that_stands_nowhere_is_a_reason(made: Model) -> None:
+    model, beam = made
+    (bar,) = model.bars(beam, straight(50, 5950, 0, 60))
+    bar.ObjectPlacement.RelativePlacement.Location.Coordinates = (1e300, 0.0, 0.0)
+    assert "stands nowhere" in model.read(beam).reasons
+
+
+@pytest.mark.parametrize("coordinates", [[(50.0, 0.0, 60.0)], [(0.0, 0.0, 0.0), (1e300, 0.0, 0.0)]])
+def test_a_bar_of_no_length_or_of_an_absurd_one_is_a_reason(
+    made: Model, coordinates: list[tuple[float, float, float]]
+) -> None:
+    model, beam = made
+    (bar,) = model.bars(beam, straight(50, 5950, 0, 60))
+    curve = bar.Representation.Representations[0].Items[0].Directrix
+    curve.Segments = None
+    curve.Points.CoordList = coordinates
+    assert "no earthly length" in model.read(beam).reasons
+
+
 def test_loose_bars_elsewhere_are_not_noticed(made: Model) -> None:
     model, beam = made
     upright = Curve(((3000.0, 0.0, -2500.0), (3000.0, 0.0, 3000.0)))  # a column's bar

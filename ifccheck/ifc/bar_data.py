@@ -239,5 +239,7 @@ def _size_hint(source: str, value: PropertyValue) -> Iterable[SizeSource]:
             yield SizeSource(source, designation=designation)
         elif value.value.strip().isdecimal():
             yield SizeSource(source, diameter=float(value.value), hint=True)
+    elif value.kind is None and isinstance(value.value, int | float):
+        yield SizeSource(source, diameter=float(value.value), hint=True)
     elif value.kind == "length" and value.number is not None:
         yield SizeSource(source, diameter=value.number, hint=True)

@@ -12,8 +12,7 @@ from ifccheck.ifc.relations import Relations
 Tie = Literal["part", "beside", "elsewhere", "loose"]
 """Part of the beam, beside it in an assembly, part of something else, or tied to nothing."""
 
-GATHERING = ("IfcElementAssembly", "IfcBeam")
-"""Classes whose parts may still reinforce another beam: an assembly, and a beam out of scope."""
+ASSEMBLY, BEAM = "IfcElementAssembly", "IfcBeam"
 
 
 @dataclass(frozen=True, slots=True)
@@ -61,7 +60,9 @@ class Hosts:
         if above.tie == "part":
             return above
         entity = self._file.by_id(whole)
-        if not any(entity.is_a(name) for name in GATHERING):
+        if entity.is_a(BEAM):
+            return LOOSE  # a beam out of scope, or one whose body is not read
+        if not entity.is_a(ASSEMBLY):
             return ELSEWHERE if entity.is_a("IfcElement") else LOOSE
         beside = sorted(self._beams.intersection(self._relations.descendants(whole)))
         return Host("beside", tuple(beside)) if beside else above

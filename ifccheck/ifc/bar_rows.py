@@ -23,6 +23,8 @@ NOTICED_RUN, NOTICED_LENGTH = 20.0, 300.0
 along it, however far it goes on."""
 
 
+MOST_TOLD = 8
+"""A bar that lies in none of the beams of its assembly is told to no more beams than this."""
 ROTATION_STEPS, PLACE_STEPS = 1e7, 1e4
 """Steps per unit of a rotation and per mm within which strands are alike."""
 
@@ -122,26 +124,52 @@ def _first_of_each(key: npt.NDArray[np.int64]) -> tuple[Ints, Ints]:
 
 def find_rows(places: BarPlaces, hosts: Mapping[int, Host]) -> Found:
     """Find the beams of all strands; ``hosts`` by the STEP id of the bar."""
-    tied = list(_candidates(places, hosts, "part"))
-    beside = list(_candidates(places, hosts, "beside"))
-    chosen, astray = _nearest(places, _rows(beside))
-    rows = _rows(tied)
-    tied_rows = Rows(
-        np.concatenate((rows.strand, chosen.strand)), np.concatenate((rows.beam, chosen.beam))
+    tied = _rows(list(_candidates(places, hosts, "part")))
+    beside, astray = _beside(places, hosts)
+    strand, beam = (
+        np.concatenate(pair) for pair in ((tied.strand, beside.strand), (tied.beam, beside.beam))
     )
-    return Found(tied_rows, astray, _noticed(places, hosts))
+    return Found(Rows(strand, beam), astray, _noticed(places, hosts))
 
 
 def _candidates(
-    places: BarPlaces, hosts: Mapping[int, Host], tie: str
+    places: BarPlaces, hosts: Mapping[int, Host], tie: str, most: int | None = None
 ) -> Iterator[tuple[int, int]]:
+    """Strands of one tie with each of their beams, those with more than ``most`` left out."""
     index = places.frames.index()
     bars = places.table.bars
     for strand, bar in enumerate(places.table.bar.tolist()):
         host = hosts[bars[bar].step_id]
-        if host.tie == tie:
+        if host.tie == tie and (most is None or len(host.beams) <= most):
             for beam in host.beams:
                 yield strand, index[beam]
+
+
+def _beside(places: BarPlaces, hosts: Mapping[int, Host]) -> tuple[Rows, Rows]:
+    """Of the beams beside each strand the one that holds most of it, and strands in none.
+
+    Where an assembly holds many beams, a strand in none of them is nothing to tell each of them.
+    """
+    strands = _strands(places, hosts, "beside")
+    if not len(strands):
+        return _rows([]), _rows([])
+    bars, index = places.table.bars, places.frames.index()
+    near = _overlapping(places, strands)
+    own = [
+        beam in {index[one] for one in hosts[bars[bar].step_id].beams}
+        for bar, beam in zip(
+            places.table.bar[near.strand].tolist(), near.beam.tolist(), strict=True
+        )
+    ]
+    held = _fullest(places, near.take(np.array(own, dtype=bool)))
+    listed = _rows(list(_candidates(places, hosts, "beside", MOST_TOLD)))
+    return held, listed.take(~np.isin(listed.strand, held.strand))
+
+
+def _strands(places: BarPlaces, hosts: Mapping[int, Host], tie: str) -> Ints:
+    """The strands of bars of one tie."""
+    of_tie = np.array([hosts[bar.step_id].tie == tie for bar in places.table.bars], dtype=bool)
+    return np.flatnonzero(of_tie[places.table.bar]) if len(of_tie) else np.zeros(0, dtype=np.intp)
 
 
 def _rows(pairs: list[tuple[int, int]]) -> Rows:
@@ -167,22 +195,18 @@ def _inside(places: BarPlaces, rows: Rows) -> tuple[Floats, Floats]:
     return np.asarray(held / np.maximum(total, 1e-9)), np.asarray(along, dtype=float)
 
 
-def _nearest(places: BarPlaces, rows: Rows) -> tuple[Rows, Rows]:
-    """Of the beams beside each strand the one that holds most of it, and strands in none."""
+def _fullest(places: BarPlaces, rows: Rows) -> Rows:
+    """For each strand the beam that holds most of it, where one holds half of it."""
     share, _ = _inside(places, rows)
     order = np.lexsort((rows.beam, -share, rows.strand))
     best = np.ones(len(order), dtype=bool)
     best[1:] = np.diff(rows.strand[order]) != 0
     first = order[best]
-    held = first[share[first] >= INSIDE_SHARE]
-    lost = ~np.isin(rows.strand, rows.strand[held])
-    return rows.take(held), rows.take(lost)
+    return rows.take(first[share[first] >= INSIDE_SHARE])
 
 
 def _noticed(places: BarPlaces, hosts: Mapping[int, Host]) -> Rows:
-    bars = places.table.bars
-    free = np.array([hosts[bar.step_id].tie == "loose" for bar in bars], dtype=bool)
-    strands = np.flatnonzero(free[places.table.bar]) if len(bars) else np.zeros(0, dtype=np.intp)
+    strands = _strands(places, hosts, "loose")
     if not len(strands):
         return _rows([])
     rows = _overlapping(places, strands)

@@ -15,6 +15,8 @@ from ifccheck.ifc.units import ModelUnits
 
 SAME_SCALE = 1e-6
 """Relative difference within which a mapped bar is not stretched."""
+FARTHEST = 1e11
+"""Greatest coordinate [mm] of a place on the earth, and more."""
 DEEPEST_MAPPING = 8
 """Mapped items within mapped items that are followed."""
 
@@ -113,6 +115,9 @@ class BarShapes:
         raise UnreadableError(f"has a body of kind {kind}, which is not read yet")
 
     def _strand(self, path: Path, matrix: Matrix, diameter: float | None) -> Strand:
+        values = [value for point in path.points for value in point]
+        if len(path.points) < 2 or not -FARTHEST < min(values) <= max(values) < FARTHEST:
+            raise UnreadableError("has a centre line without length, or of no earthly length")
         self.paths.append(path)
         return Strand(len(self.paths) - 1, matrix, diameter)
 

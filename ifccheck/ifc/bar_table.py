@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Mapping, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from itertools import repeat
 from typing import NamedTuple
 
@@ -12,7 +12,7 @@ import numpy as np
 from ifccheck.ifc.bar_chains import Chain, follow_chains
 from ifccheck.ifc.bar_data import BarData
 from ifccheck.ifc.bar_paths import Floats, Ints, Path
-from ifccheck.ifc.bar_shapes import BarShapes, Strand
+from ifccheck.ifc.bar_shapes import FARTHEST, BarShapes, Strand
 from ifccheck.ifc.bar_sizes import BarSize, Grade
 from ifccheck.ifc.context import Context
 from ifccheck.ifc.entity import Entity, UnreadableError
@@ -169,7 +169,25 @@ def gather_bars(
             found.add(product, chain)
         except UnreadableError as error:
             unreadable[product.id()] = str(error)
-    return _table(found, unreadable, context.units.length)
+    return _within_reach(_table(found, unreadable, context.units.length))
+
+
+def _within_reach(table: BarTable) -> BarTable:
+    """The table without strands that stand nowhere: their coordinates are no lengths."""
+    size = np.maximum(np.abs(table.translation).max(axis=1, initial=0.0), 0.0)
+    size = np.maximum(size, np.abs(table.rotation).max(axis=(1, 2), initial=0.0))
+    near = size <= FARTHEST  # false for what is no number
+    if near.all():
+        return table
+    lost = {table.bars[bar].step_id: "stands nowhere" for bar in table.bar[~near].tolist()}
+    return replace(
+        table,
+        bar=table.bar[near],
+        path=table.path[near],
+        rotation=table.rotation[near],
+        translation=table.translation[near],
+        unreadable={**table.unreadable, **lost},
+    )
 
 
 def _table(found: _Gathering, unreadable: Mapping[int, str], scale: float) -> BarTable:

@@ -70,6 +70,7 @@ def _physical(
     statements: StepTable | None,
 ) -> tuple[dict[int, Reinforcement], dict[int, tuple[Remark, ...]]]:
     """Bars by beam, and remarks on bars for beams whose reinforcement is described otherwise."""
+    hosts = {step_id: frame for step_id, frame in hosts.items() if frame.runs}
     if not hosts:
         return {}, {}
     frames = make_frames(hosts)
