@@ -477,7 +477,8 @@ BEAMS: Mapping[str, tuple[str, str]] = {
     ),
     "a direction of no length": (hall(Beam(along=(0.0, 0.0, 0.0))), "direction of no length"),
     "a direction of texts": (
-        changed(hall(Beam(along=(0.0, 1.0, 0.5))), ("(0.0,1.0,0.5)", "('a','b','c')")), "classes ask",
+        changed(hall(Beam(along=(0.0, 1.0, 0.5))), ("(0.0,1.0,0.5)", "('a','b','c')")),
+        "classes ask",
     ),
     "a placement without a position": (
         re.sub(r"IFCLOCALPLACEMENT\(\$,#\d+\)", "IFCLOCALPLACEMENT($,$)", hall(Beam()), count=1),
