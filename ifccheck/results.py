@@ -109,7 +109,9 @@ def _case(case: Case, gathered: Gathered, ratings: Mapping[str, Rating]) -> Case
         nature=case.nature,
         factor=math.nan if least is None else factors[least],
         governing_beam=least if limited else None,
-        text=_case_text(case.name, least if limited else None, open_, ratings),
+        text=_case_text(case.name, least if limited else None, open_, ratings)
+        if reached
+        else "no beam in scope carries it",
         beams_reached=len(reached),
         unrated_in_path=open_,
     )

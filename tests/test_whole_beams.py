@@ -377,6 +377,20 @@ def test_beam_without_stirrups_falls_short_where_shear_asks_for_them(tmp_path: P
     assert answer["verdict"] == "falls short"
 
 
+def test_an_outline_out_of_level_by_rounding_is_a_rectangle(tmp_path: Path) -> None:
+    """Corners that differ by millionths of a mm, as exporters write them, leave the web whole."""
+    web, bottom, stirrups = SHEAR_BEAMS["stirrups"]
+    level: Outline = rectangle(web.width, web.depth)
+    noise = (0.0, 4e-6, 0.0, 3e-4)
+    ragged = tuple((y, z + dz) for (y, z), dz in zip(level, noise, strict=True))
+    text = brief(BEARINGS, load("floor", 'line = "15 kN/m"'))
+    exact = rated(tmp_path / "exact", simple_beam(level, bottom, stirrups), text)
+    found = rated(tmp_path / "ragged", simple_beam(ragged, bottom, stirrups), text)
+    for each in ("FlexureSagging", "Shear", "LongitudinalTension"):
+        for key in ("utilisation", "resistance"):
+            assert state(found, each)[key] == pytest.approx(state(exact, each)[key], rel=1e-5)
+
+
 # Loads -------------------------------------------------------------------------------------------
 
 STATICS = yaml.safe_load((PUBLISHED / "statics.yaml").read_text(encoding="utf-8"))

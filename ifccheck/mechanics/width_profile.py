@@ -16,8 +16,9 @@ from ifccheck.mechanics.arrays import Bools, Floats
 Ring = Sequence[tuple[float, float]]
 """Corners (y, z) of a closed line [mm]"""
 
-SLIVER = 1e-6
-"""Lengths below this [mm] are rounding, not shape."""
+SLIVER = 1e-3
+"""Lengths below this [mm] are rounding, not shape: models hold outlines that are out of level by
+as much."""
 
 STEEPEST_LEDGE = 1.0
 """A side that moves out by more than this per unit of height is a flange's underside."""

@@ -227,7 +227,8 @@ def _face(
             section.bars_outside,
         ]
     )
-    bt = np.minimum(greatest_width(strips, h / 2, h), tension_width_limit * bw)
+    some_web = np.where(bw > 0.0, bw, np.inf)  # an outline may end in a point
+    bt = np.minimum(greatest_width(strips, h / 2, h), tension_width_limit * some_web)
     return FaceState(
         moment_resistance=np.where(outside, np.nan, s.moment),
         effective_depth=d,
