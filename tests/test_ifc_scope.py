@@ -299,6 +299,31 @@ def test_prestressed_beams_are_told(how: str) -> None:
     assert "prestressed" in reasons(only_beam(building.read()))
 
 
+def tendon(building: Building, at: tuple[float, float, float]) -> Any:
+    """A straight tendon of 5 m along x, as a swept disk."""
+    line = building.entity("IfcPolyline", [building.point(0, 0, 0), building.point(5000, 0, 0)])
+    disk = building.entity("IfcSweptDiskSolid", line, 7.6 / building.mm)
+    return building.member("IfcTendon", disk, placement=building.placement(at))
+
+
+@pytest.mark.parametrize(("height", "found"), [(0.0, True), (200.0, True), (400.0, False)])
+def test_tendon_tied_to_nothing_prestresses_the_beam_that_it_runs_in(
+    height: float, found: bool
+) -> None:
+    building = Building("IFC4", "METRE")
+    building.beam(solid(building))
+    tendon(building, (500, 0, height))
+    assert ("prestressed" in reasons(only_beam(building.read()))) is found
+
+
+def test_tendon_without_a_place_is_a_doubt_of_the_model() -> None:
+    building = Building("IFC4")
+    building.beam(solid(building))
+    building.member("IfcTendon")
+    model = building.read()
+    assert "1 tendons belong to no member" in model.remarks[0].text
+
+
 # strength
 
 

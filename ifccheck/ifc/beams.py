@@ -26,6 +26,7 @@ from ifccheck.ifc.scope import Clues, judge
 from ifccheck.ifc.storeys import Storeys
 from ifccheck.ifc.straight import Straight, straighten
 from ifccheck.ifc.strength import Strengths, concrete_strength
+from ifccheck.ifc.tendons import Tendons
 from ifccheck.ifc.vocabulary import speaks_of_lightweight, speaks_of_prestress
 
 GENERAL = "Pset_ConcreteElementGeneral"
@@ -77,10 +78,15 @@ class BeamReader:
         self._profiles = profiles
         self._storeys = storeys
         self._model = model
+        self._tendons = Tendons(context, profiles)
         self._materials = Materials(context)
         self._strengths = Strengths(context)
-        self._prestressed = prestressed_wholes(context)
         self._type_names: dict[int, str] = {}
+
+    @property
+    def remarks(self) -> tuple[Remark, ...]:
+        """What is doubtful of the model, and not of a single beam."""
+        return self._tendons.remarks
 
     def read(self, entity: Entity, identity: Identity) -> Found:
         """Return what the model says of a beam."""
@@ -96,7 +102,7 @@ class BeamReader:
             return Found(self._left_out(entity, identity, *scope.left_out), box)
         if scope.doubt is not None:
             doubts.reason(scope.doubt)
-        self._doubt_kind(entity, clues, doubts)
+        self._doubt_kind(entity, clues, box, doubts)
         beam = self._beam(entity, identity, straight, clues, sets, doubts)
         return Found(beam, box)
 
@@ -169,11 +175,11 @@ class BeamReader:
             evidence=evidence,
         )
 
-    def _doubt_kind(self, entity: Entity, clues: Clues, doubts: _Doubts) -> None:
+    def _doubt_kind(self, entity: Entity, clues: Clues, box: Box | None, doubts: _Doubts) -> None:
         """Reasons that lie in what the beam is: prestressed, with openings, lightweight."""
         step_id = entity.id()
         relations = self._context.relations
-        if not self._prestressed.isdisjoint((step_id, *relations.ancestors(step_id))):
+        if self._tendons.in_beam(step_id, box):
             doubts.reason("prestressed: the model holds tendons in it")
         elif get(entity, "PredefinedType") == "HOLLOWCORE":
             doubts.reason("prestressed: a hollow-core unit")
@@ -290,14 +296,3 @@ def _first(speaks: Callable[[str], bool], names: tuple[str, ...]) -> str:
 
 def _count(number: int, noun: str) -> str:
     return f"{number} {noun}{'s' if number > 1 else ''}"
-
-
-def prestressed_wholes(context: Context) -> frozenset[int]:
-    """Return the ids of all that holds a tendon, spatial elements apart."""
-    found: set[int] = set()
-    for kind in ("IfcTendon", "IfcTendonAnchor"):
-        for tendon in context.file.by_type(kind):
-            for whole in context.relations.ancestors(tendon.id()):
-                if context.file.by_id(whole).is_a("IfcElement"):
-                    found.add(whole)
-    return frozenset(found)

@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable
 from dataclasses import replace
 from typing import TYPE_CHECKING
 
@@ -13,6 +12,7 @@ from ifccheck.ifc.bodies import BOOLEANS, Placed, Prism, body_items, extrusion
 from ifccheck.ifc.clips import Cloud, left_over, read_cut
 from ifccheck.ifc.entity import Entity, UnreadableError, get, need
 from ifccheck.ifc.placements import Matrix
+from ifccheck.ifc.points import points_of
 from ifccheck.ifc.profiles import Profiles
 from ifccheck.ifc.vectors import Triple, added, combined, cross, dot, rounded
 
@@ -97,43 +97,8 @@ class Boxes:
     def _faceted(self, item: Entity) -> Cloud:
         step_id = item.id()
         if step_id not in self._points:
-            self._points[step_id] = self._read_points(item)
+            self._points[step_id] = points_of(self._context, item)
         return self._points[step_id]
-
-    def _read_points(self, item: Entity) -> Cloud:
-        scale = self._context.units.length
-        points: list[tuple[float, ...]] = []
-        for entity in self._context.file.traverse(item):
-            reader = POINT_READERS.get(entity.is_a())
-            if reader is not None:
-                points += reader(entity)
-        cloud = np.array(points, dtype=float).reshape(-1, 3) * scale
-        if not len(cloud) or not np.isfinite(cloud).all():
-            raise UnreadableError(f"extent of an {item.is_a()} without points")
-        return cloud
-
-
-def _point(entity: Entity) -> list[tuple[float, ...]]:
-    return [entity.get_argument(0)] if len(entity.get_argument(0)) == 3 else []
-
-
-def _point_list(entity: Entity) -> list[tuple[float, ...]]:
-    return list(entity.get_argument(0))
-
-
-def _round(entity: Entity) -> list[tuple[float, ...]]:
-    """Corners of the cube round a circle or an ellipse."""
-    x, y, z = need(need(entity, "Position"), "Location")[0]
-    r = max(get(entity, name) or 0.0 for name in ("Radius", "SemiAxis1", "SemiAxis2"))
-    return [(x + a, y + b, z + c) for a in (-r, r) for b in (-r, r) for c in (-r, r)]
-
-
-POINT_READERS: dict[str, Callable[[Entity], list[tuple[float, ...]]]] = {
-    "IfcCartesianPoint": _point,
-    "IfcCartesianPointList3D": _point_list,
-    "IfcCircle": _round,
-    "IfcEllipse": _round,
-}
 
 
 def own_axes(prism: Prism) -> tuple[Triple, Triple, Triple]:

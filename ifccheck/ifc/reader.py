@@ -101,7 +101,7 @@ def _read(opened: Opened, mapping: Mapping[str, str]) -> Model:
         out_of_scope=tuple(left_out),
         members=members.members,
         storeys=storeys.all,
-        remarks=(*opened.remarks, *_repeats(entities), *members.remarks),
+        remarks=(*opened.remarks, *_repeats(entities), *reader.remarks, *members.remarks),
     )
 
 
