@@ -255,6 +255,33 @@ def test_profile_set_usage_gives_material_and_steel_section() -> None:
     assert beam.concrete_strength.value == 25.0
 
 
+@pytest.mark.parametrize(
+    ("value", "in_scope"),
+    [("Concrete, Cast-in-Place, C28/35", True), ("Metal - Steel 43-275", False)],
+)
+def test_a_property_that_names_the_material_counts_where_nothing_else_does(
+    value: str, in_scope: bool
+) -> None:
+    building = Building("IFC4")
+    beam = building.beam(solid(building), material="Default")
+    label = building.file.create_entity("IfcLabel", value)
+    building.give_set(beam, "Materials and Finishes", **{"Structural Material": label})
+    model = building.read()
+    assert len(model.beams) == in_scope
+    if in_scope:
+        assert reasons(only_beam(model)) == ""
+        assert only_beam(model).concrete_strength.value == 28.0  # type: ignore[union-attr]
+    else:
+        assert only_left_out(model).evidence.startswith(
+            "Materials and Finishes.Structural Material"
+        )
+
+
+def test_size_that_looks_like_a_steel_section_does_not_contradict_concrete() -> None:
+    assert reasons(only_beam(read_one("Concrete C30/37", Name="W300x500"))) == ""
+    assert only_left_out(read_one("", Name="W12x26")).reason == "steel"
+
+
 def test_hosted_bars_mean_concrete() -> None:
     building = Building("IFC4")
     beam = building.beam(solid(building), material="")

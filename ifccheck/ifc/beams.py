@@ -2,8 +2,9 @@
 
 from __future__ import annotations
 
+import re
 from collections.abc import Callable, Iterator
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 
 from ifccheck.beam import Beam, Box, Given, OutOfScope, Reason, Remark, Run
 from ifccheck.ifc.bodies import body_items, read_prism
@@ -25,7 +26,7 @@ from ifccheck.ifc.properties import PropertyValue, Sets
 from ifccheck.ifc.scope import Clues, judge
 from ifccheck.ifc.storeys import Storeys
 from ifccheck.ifc.straight import Straight, straighten
-from ifccheck.ifc.strength import Strengths, concrete_strength
+from ifccheck.ifc.strength import Strengths, concrete_strength, strengths_told
 from ifccheck.ifc.tendons import Tendons
 from ifccheck.ifc.vocabulary import speaks_of_lightweight, speaks_of_prestress
 
@@ -34,6 +35,7 @@ GEOMETRY, MATERIALS = "geometry", "materials"
 COVERS = ("ConcreteCoverAtLinks", "ConcreteCover")
 THICKEST_COVER = 200.0
 """Covers beyond this are misread units [mm]."""
+SPEAKS_OF_MATERIAL = re.compile(r"materi[ae]l|werkstoff|matériau|betong?güte", re.IGNORECASE)
 DENSITIES = (1000.0, 3500.0)
 """Densities that concrete has [kg/m3]."""
 
@@ -97,6 +99,9 @@ class BeamReader:
         sets = self._context.properties.of(step_id)
         clues = self._clues(entity, straight, definition, sets)
         scope = judge(clues)
+        if scope.unknown:
+            clues = replace(clues, properties=_told_by_properties(sets))
+            scope = judge(clues)
         box = straight.box if straight is not None else None
         if scope.left_out is not None:
             return Found(self._left_out(entity, identity, *scope.left_out), box)
@@ -201,6 +206,7 @@ class BeamReader:
     ) -> Beam:
         step_id = entity.id()
         readings = self._strengths.of(clues.definition, sets)
+        readings += strengths_told(clues.properties)
         strength, remarks = concrete_strength(readings, identity.key)
         doubts.remarks += remarks
         density = self._density(clues, doubts)
@@ -238,6 +244,19 @@ class BeamReader:
         if named := _first(speaks_of_lightweight, _all_names(clues)):
             doubts.reason(f'lightweight concrete of unstated density: "{named}"', blocking=False)
         return None
+
+
+def _told_by_properties(sets: Sets) -> tuple[tuple[str, str], ...]:
+    """Texts of properties that are called a material, with where they stand.
+
+    Looked up only where nothing else tells: reading every set of every beam takes long.
+    """
+    return tuple(
+        (f"{name}.{key}", value.value)
+        for name, values in sets.items()
+        for key, value in values.items()
+        if isinstance(value.value, str) and SPEAKS_OF_MATERIAL.search(key)
+    )
 
 
 def _number_of_bodies(count: int) -> str:

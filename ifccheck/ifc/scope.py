@@ -10,6 +10,7 @@ from ifccheck.ifc.materials import MaterialDefinition
 from ifccheck.ifc.vocabulary import (
     BEAM_WORDS,
     CONCRETE,
+    LIKELY_STEEL_SECTIONS,
     REBAR,
     STEEL,
     STEEL_SECTIONS,
@@ -33,6 +34,8 @@ class Clues:
     hosts_bars: bool
     concrete_class: bool
     """A concrete strength class is stated for the beam itself."""
+    properties: tuple[tuple[str, str], ...] = ()
+    """Values of properties that may name its material, each with the property's name."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -41,6 +44,8 @@ class Scope:
 
     left_out: Evidence | None = None
     doubt: str | None = None
+    unknown: bool = False
+    """Nothing tells what it is made of."""
 
 
 def judge(clues: Clues) -> Scope:
@@ -50,8 +55,10 @@ def judge(clues: Clues) -> Scope:
         stated.append((CONCRETE, "it hosts reinforcing bars"))
     if clues.concrete_class:
         stated.append((CONCRETE, "it states a concrete strength class"))
-    named = [piece for name in clues.names for piece in _name_evidence(name)]
-    used = _use(named + stated, clues.names, _is_concrete(stated))
+    stated += _property_evidence(clues.properties)
+    concrete = any(family == CONCRETE for family, _ in stated)
+    named = [piece for name in clues.names for piece in _name_evidence(name, concrete)]
+    used = _use(named + stated, clues.names, concrete)
     if used is not None:
         return used
     return _by_material(
@@ -75,10 +82,6 @@ def _use(evidence: Iterable[Evidence], names: Iterable[str], concrete: bool) -> 
     return None
 
 
-def _is_concrete(stated: Iterable[Evidence]) -> bool:
-    return any(family == CONCRETE for family, _ in stated)
-
-
 def _by_material(
     stated: list[Evidence], named: list[Evidence], definition: MaterialDefinition
 ) -> Scope:
@@ -98,7 +101,7 @@ def _by_material(
         family, where = against[0]
         return Scope(left_out=(STEEL if family == REBAR else family, where))
     title = f'"{definition.title}"' if definition.title else "none given"
-    return Scope(doubt=f"material unknown: {title}")
+    return Scope(doubt=f"material unknown: {title}", unknown=True)
 
 
 def _material_evidence(definition: MaterialDefinition) -> Iterable[Evidence]:
@@ -110,13 +113,22 @@ def _material_evidence(definition: MaterialDefinition) -> Iterable[Evidence]:
         for family in sorted(families_named(name)):
             yield family, f'material set "{name}"'
     for name in definition.profile_names:
-        yield from _name_evidence(name)
+        yield from _name_evidence(name, concrete=True)
+
+
+def _property_evidence(properties: Iterable[tuple[str, str]]) -> Iterable[Evidence]:
+    for source, value in properties:
+        for family in sorted(families_of_material(value)):
+            yield family, f'{source} "{value}"'
 
 
 @lru_cache(maxsize=8192)
-def _name_evidence(name: str) -> tuple[Evidence, ...]:
+def _name_evidence(name: str, concrete: bool) -> tuple[Evidence, ...]:
+    """What a name tells; ``concrete``: a likely steel section may be the size of a concrete one."""
     found = [(family, f'name "{name}"') for family in sorted(families_named(name))]
     section = STEEL_SECTIONS.search(name)
+    if section is None and not concrete:
+        section = LIKELY_STEEL_SECTIONS.search(name)
     if section:
         found.append((STEEL, f'steel section "{section.group().strip()}" in "{name}"'))
     return tuple(found)

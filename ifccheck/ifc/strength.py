@@ -7,7 +7,7 @@ a cube is read both ways and the lower counts.
 from __future__ import annotations
 
 import re
-from collections.abc import Iterator, Sequence
+from collections.abc import Iterable, Iterator, Sequence
 from dataclasses import dataclass
 from functools import lru_cache
 from typing import TYPE_CHECKING
@@ -171,6 +171,14 @@ class Strengths:
             reading = read_strength_text(text, f'material name "{text}"')
             if reading is not None:
                 yield reading
+
+
+def strengths_told(properties: Iterable[tuple[str, str]]) -> Iterator[Reading]:
+    """Yield the strengths that texts of properties name, each given with its property."""
+    for source, text in properties:
+        reading = read_strength_text(text, f'{source} "{text}"')
+        if reading is not None:
+            yield reading
 
 
 def _from_sets(sets: Sets) -> Iterator[Reading]:

@@ -108,10 +108,13 @@ MATERIAL_GRADES: Mapping[str, str] = {
 
 STEEL_SECTIONS = re.compile(
     r"\b(?:he ?\d{2,4} ?[abm]{1,2}|he[abm] ?\d{2,4}|ipe ?[aor]? ?\d{2,4}|ipn ?\d{2,4}"
-    r"|up[en] ?\d{2,4}|unp ?\d{2,4}|hss ?\d[\d.x*/ -]*|[rsc]hs ?\d[\d.x*/ -]*"
-    r"|ub ?\d{3} ?x|uc ?\d{3} ?x|\d{3}x\d{3}x\d{2,3} ?u[bcp]|w ?\d{1,4} ?x ?\d{2,3})(?![a-z])",
+    r"|up[en] ?\d{2,4}|unp ?\d{2,4}|hss ?\d[\d./ -]*[x*×] ?\d[\d.x*×/ -]*"
+    r"|[rsc]hs ?\d[\d.]* ?[x*×] ?\d[\d.x*× ]*"
+    r"|ub ?\d{3} ?x ?\d+|uc ?\d{3} ?x ?\d+|\d{3}x\d{3}x\d{2,3} ?u[bcp])(?![a-z])",
     re.IGNORECASE,
 )
+LIKELY_STEEL_SECTIONS = re.compile(r"\bw ?\d{1,4} ?[x×] ?\d{2,3}(?![a-z])", re.IGNORECASE)
+"""W12x26; where the material is concrete it may be a width and a depth."""
 
 LIGHTWEIGHT = re.compile(
     r"\blc ?\d{2,3}/\d{2,3}|light ?-?weight|leichtbeton|lichtbeton|low[- ]density|lettbetong",
@@ -119,7 +122,7 @@ LIGHTWEIGHT = re.compile(
 )
 PRESTRESSED = re.compile(
     r"pre-?stress|post-?tension|pre-?tension|spannbeton|vorgespannt|voorgespannen|spennarmer"
-    r"|spennbetong|précontraint|precontraint|pretensad|postesad|postensad|hollow-?core",
+    r"|spennbetong|précontraint|precontraint|precompress|pretensad|postesad|postensad|hollow-?core",
     re.IGNORECASE,
 )
 
