@@ -15,9 +15,8 @@ import numpy as np
 import numpy.typing as npt
 
 from ifccheck.beam import Bars, Beam, Load, Outline, Span, Stirrups
-from ifccheck.rating.batch import Batch, details_at
+from ifccheck.rating.batch import Batch
 from ifccheck.rating.results import LimitStateRating, Rating
-from ifccheck.rating.utilisation import Worst
 from ifccheck.standards import CalculationLine
 from ifccheck.units import show, show_ratio
 
@@ -175,9 +174,9 @@ def _result(value: float, unit: str) -> str:
 def sheet_maker(batch: Batch, ratings: Sequence[Rating]) -> Callable[[int], Sheet]:
     """Return a function that makes the sheet of a row of the batch.
 
-    The details of every beam's governing places are worked out once, for all of them together.
+    The details of every beam's governing places were worked out with the batch.
     """
-    details = [details_at(found, batch, _elements(found.worst)) for found in batch.states]
+    details = [found.shown.details for found in batch.states]
 
     def sheet(row: int) -> Sheet:
         subject, rating = batch.subjects[row], ratings[row]
@@ -206,11 +205,6 @@ def bare_sheet(beam: Beam, rating: Rating) -> Sheet:
     """Make the sheet of a beam of which nothing could be worked out."""
     section = beam.runs[0].outline if beam.runs else None
     return Sheet(beam, rating, None, (), (), (), section, 0.0, (), ())
-
-
-def _elements(worst: Worst) -> Ints:
-    incomplete = worst.incomplete & (worst.utilisation <= 1.0)
-    return np.where(incomplete, worst.incomplete_element, worst.element)
 
 
 def _check(

@@ -409,6 +409,23 @@ def test_array_equals_scalar(state_of, case):
 
 
 @settings(deadline=None, max_examples=30)
+@given(cases())
+@pytest.mark.parametrize("state_of", STANDARD.limit_states, ids=lambda s: s.name)
+def test_the_quick_utilisation_is_that_of_the_check(state_of, case):
+    """Wherever a run evaluates a limit state, it is what the calculation prints."""
+    state, acting = case
+    shape = acting.moment.shape
+    every = np.indices(shape).reshape(2, -1)
+    basis = state_of.quick.basis(state).take(every[1])
+    quick = state_of.quick.utilisation(basis, acting.at(tuple(every)))
+    whole = state_of.check(state, acting).utilisation
+    np.testing.assert_allclose(quick.reshape(shape), whole, rtol=1e-12)
+    some = slice(0, None, 2)
+    again = state_of.quick.utilisation(basis.take(some), acting.at(tuple(every)).take(some))
+    np.testing.assert_array_equal(again, quick[some])
+
+
+@settings(deadline=None, max_examples=30)
 @given(cases(), st.floats(1.0, 3.0))
 def test_shear_utilisation_never_lessens_as_all_loads_grow(case, factor):
     state, acting = case

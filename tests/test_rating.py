@@ -15,7 +15,6 @@ from ifccheck.mechanics.arrays import Floats
 from ifccheck.rating.results import Rating
 from ifccheck.rating.subject import Subject
 from ifccheck.rating.utilisation import worst_of
-from ifccheck.standards import Check
 from tests.made_subjects import line, point, rated, scaled, subject
 
 loads_of_floor = st.floats(2.0, 25.0)
@@ -138,11 +137,25 @@ def test_a_lifting_case_is_limited_by_the_top() -> None:
 
 
 def test_a_nan_is_never_dropped() -> None:
-    utilisation = np.array([[0.5, np.nan, 0.2], [0.1, 0.3, 0.4]])
-    check = Check(utilisation, utilisation, utilisation, (), None)
-    worst = worst_of(check, np.array([0, 2]))
+    utilisation = np.array([0.5, 0.1, np.nan, 0.3, 0.2, 0.4])
+    worst = worst_of(utilisation, np.array([0, 3, 1, 4, 2, 5]), np.array([0, 4]))
     assert worst.incomplete.tolist() == [True, False]
     assert worst.utilisation.tolist() == [0.5, 0.4]
+    assert worst.shown.tolist() == [1, 5]
+
+
+@settings(deadline=None, max_examples=25)
+@given(st.lists(beams, min_size=1, max_size=4), st.sampled_from(["general", "simplified"]))
+def test_every_arrangement_left_out_equals_one_that_is_evaluated(
+    some: list[Subject], method: str
+) -> None:
+    """The whole check at every arrangement finds no utilisation above those of the elements."""
+    batch, _ = rated(*(_renamed(beam, f"beam {i}") for i, beam in enumerate(some)), method=method)
+    for found in batch.states:
+        whole = found.state.check(batch.prepared, batch.demand).utilisation
+        greatest = np.maximum.reduceat(whole.max(axis=(0, 1)), batch.first[:-1])
+        np.testing.assert_allclose(found.worst.utilisation, greatest, rtol=1e-12)
+        np.testing.assert_allclose(found.shown.utilisation, greatest, rtol=1e-12)
 
 
 def test_unknown_stirrup_legs_leave_the_beam_not_rated() -> None:

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass, fields, replace
+from dataclasses import dataclass
 from typing import Self
 
 import numpy as np
@@ -105,6 +105,10 @@ class Demand:
     """Some arrangement of the loads puts the soffit in tension here"""
     can_hog: Bools
 
-    def take(self, rows: Ints) -> Self:
+    def take(self, rows: Ints | slice) -> Self:
         """The same arrays at the given rows of the last axis."""
-        return replace(self, **{f.name: getattr(self, f.name)[..., rows] for f in fields(self)})
+        return type(self)(*(getattr(self, name)[..., rows] for name in self.__slots__))
+
+    def at(self, places: tuple[Ints, ...]) -> Self:
+        """The same arrays at the given places, one index for each axis."""
+        return type(self)(*(getattr(self, name)[places] for name in self.__slots__))

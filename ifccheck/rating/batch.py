@@ -3,13 +3,13 @@
 from __future__ import annotations
 
 from collections.abc import Iterator, Sequence
-from dataclasses import dataclass, fields
+from dataclasses import dataclass
 from typing import Any
 
 import numpy as np
 
 from ifccheck.analysis.combinations import factor_array
-from ifccheck.analysis.effects import Demands, Effects, combine, demands, turning_places
+from ifccheck.analysis.effects import Effects, combine, demands, turning_places
 from ifccheck.analysis.loads import (
     MOMENT,
     POINT,
@@ -41,11 +41,12 @@ from ifccheck.rating.assembly import (
     stirrup_table,
     within,
 )
-from ifccheck.rating.factors import Factors, rating_factors
+from ifccheck.rating.elements import Elements, distinct_elements, first_greatest
+from ifccheck.rating.factors import Factors, rating_factors, utilisation_everywhere
 from ifccheck.rating.subject import Subject
 from ifccheck.rating.utilisation import worst_of
 from ifccheck.rating.verdict import Evaluated
-from ifccheck.standards import Note, Options, Standard
+from ifccheck.standards import LimitState, Note, Options, Standard
 
 
 @dataclass(frozen=True, slots=True)
@@ -135,21 +136,28 @@ def rate_batch(
     rated = tuple(row for row, case in enumerate(cases) if case.rated)
     acting = demands(effects, critical_rows(stations, critical[:, 0], critical[:, 1]), rated)
     first = stations.first_rows(len(subjects))
-    states = tuple(
-        Evaluated(state, check, worst_of(check, first[:-1]))
-        for state in standard.limit_states
-        for check in [state.check(prepared, acting.total)]
-    )
+    elements = distinct_elements(acting, stations.beam)
+    bases = _bases(standard, prepared, elements)
+    found = [
+        utilisation_everywhere(state, basis, elements.station.size, elements.total.take)
+        for state, basis in zip(standard.limit_states, bases, strict=True)
+    ]
     return Batch(
         subjects=tuple(subjects),
         stations=stations,
         first=first,
         prepared=prepared,
         demand=acting.total,
-        states=states,
-        factors=_factors(standard, prepared, acting, stations, len(subjects), cases),
+        states=tuple(
+            _evaluated(state, prepared, acting.total, utilisation, elements)
+            for state, utilisation in zip(standard.limit_states, found, strict=True)
+        ),
+        factors={
+            cases[row].name: rating_factors(standard.limit_states, bases, elements, share)
+            for row, share in zip(acting.scaled, elements.shares, strict=True)
+        },
         places=_places(subjects, cases, combinations, effects, stations),
-        envelope=_envelope(acting.total, states),
+        envelope=_envelope(standard, prepared, acting.total, found, elements),
         notes=standard.notes(prepared),
         basis=standard.basis(prepared),
     )
@@ -280,23 +288,28 @@ def _fixed_places(frame: _Frame, critical: Floats) -> Places:
     )
 
 
-def _factors(
+def _bases(standard: Standard, prepared: Any, elements: Elements) -> list[Any]:
+    """What each limit state needs at the elements; one for all that share it."""
+    functions = dict.fromkeys(state.quick.basis for state in standard.limit_states)
+    made = {basis: basis(prepared).take(elements.station) for basis in functions}
+    return [made[state.quick.basis] for state in standard.limit_states]
+
+
+def _evaluated(
+    state: LimitState, prepared: Any, demand: Demand, utilisation: Floats, elements: Elements
+) -> Evaluated:
+    worst = worst_of(utilisation, elements.element, elements.first_of_beam)
+    places = np.unravel_index(worst.shown, demand.moment.shape)
+    return Evaluated(state, worst, state.check(prepared.take(places[-1]), demand.at(places)))
+
+
+def _envelope(
     standard: Standard,
     prepared: Any,
-    acting: Demands,
-    stations: StationTable,
-    beams: int,
-    cases: Sequence[Case],
-) -> dict[str, Factors]:
-    return {
-        cases[row].name: rating_factors(
-            standard.limit_states, prepared, acting.total, share, stations.beam, beams
-        )
-        for row, share in zip(acting.scaled, acting.shares, strict=True)
-    }
-
-
-def _envelope(demand: Demand, states: Sequence[Evaluated]) -> Envelope:
+    demand: Demand,
+    utilisations: Sequence[Floats],
+    elements: Elements,
+) -> Envelope:
     stations = demand.moment.shape[-1]
     moment, shear = demand.moment.reshape(-1, stations), demand.shear.reshape(-1, stations)
     return Envelope(
@@ -304,25 +317,17 @@ def _envelope(demand: Demand, states: Sequence[Evaluated]) -> Envelope:
         moment.min(axis=0),
         shear.max(axis=0),
         shear.min(axis=0),
-        {found.state.name: _worst_resistance(found) for found in states},
+        {
+            state.name: _worst_resistance(state, prepared, elements, utilisation)
+            for state, utilisation in zip(standard.limit_states, utilisations, strict=True)
+        },
     )
 
 
-def _worst_resistance(found: Evaluated) -> Floats:
-    utilisation = found.check.utilisation
-    shape = utilisation.shape
-    flat = np.where(np.isnan(utilisation), np.inf, utilisation).reshape(-1, shape[-1])
-    resistance = np.broadcast_to(found.check.resistance, shape).reshape(flat.shape)
-    return np.asarray(resistance[flat.argmax(axis=0), np.arange(shape[-1])])
-
-
-def details_at(found: Evaluated, batch: Batch, elements: Ints) -> Any:
-    """Details of a limit state, worked out anew at chosen elements."""
-    shape = batch.demand.moment.shape
-    demand = Demand(
-        **{
-            f.name: np.broadcast_to(getattr(batch.demand, f.name), shape).reshape(-1)[elements]
-            for f in fields(Demand)
-        }
-    )
-    return found.state.check(batch.prepared.take(elements % shape[-1]), demand).details
+def _worst_resistance(
+    state: LimitState, prepared: Any, elements: Elements, utilisation: Floats
+) -> Floats:
+    """Resistance of each station in the arrangement of its greatest utilisation (N)."""
+    known = np.where(np.isnan(utilisation), np.inf, utilisation)
+    _, row = first_greatest(known, elements.first_of_station)
+    return state.check(prepared, elements.total.take(row)).resistance

@@ -7,19 +7,22 @@ else stays at its full value.
 
 from __future__ import annotations
 
-from collections.abc import Sequence
-from dataclasses import dataclass, fields
+from collections.abc import Callable, Sequence
+from dataclasses import dataclass
 from typing import Any
 
 import numpy as np
 
 from ifccheck.mechanics.arrays import Bools, Demand, Floats, Ints
+from ifccheck.rating.elements import Elements, greatest_of_beams
 from ifccheck.standards import LimitState
 
 GREATEST_FACTOR = 1000.0
 """A case that does not govern up to this many times its loads is not limited."""
 _TOLERANCE = 1e-9
 _MOST_STEPS = 200
+_AT_ONCE = 8192
+"""Elements evaluated together, so that their arrays stay in the processor's cache"""
 _INTERIOR = (0.1, 0.35, 0.7)
 """Fractions of the bracket at which elements that may not be monotone are looked at."""
 
@@ -38,44 +41,52 @@ class Factors:
 
 @dataclass(frozen=True, slots=True)
 class _Problem:
-    """One limit state under a rated case; elements flatten (arrangements, N)."""
+    """One limit state under a rated case, at the elements (E) of the beams that it acts on."""
 
     state: LimitState
-    prepared: Any
+    basis: Any
+    """What the limit state needs at each element"""
     rest: Demand
     share: Demand
     beam: Ints
-    """Beam of each station (N)"""
+    element: Ints
+    """What each element stands for in the batch"""
 
     def everywhere(self, factor: Floats) -> Floats:
         """Utilisation of every element, each beam at its own factor (B)."""
-        return self._utilisation(self.prepared, self.rest, self.share, factor[self.beam]).reshape(
-            -1
+        return _counted(
+            utilisation_everywhere(
+                self.state, self.basis, self.beam.size, lambda rows: self._demand(rows, factor)
+            )
         )
 
-    def at(self, elements: Ints, factor: Floats) -> Floats:
-        """Utilisation at the elements, each at its own factor."""
-        prepared = self.prepared.take(self.station(elements))
-        rest, share = _flat(self.rest, elements), _flat(self.share, elements)
-        return self._utilisation(prepared, rest, share, factor)
+    def at(self, rows: Ints, factor: Floats) -> Floats:
+        """Utilisation at some elements, each beam at its own factor (B)."""
+        demand = self._demand(rows, factor)
+        return _counted(self.state.quick.utilisation(self.basis.take(rows), demand))
 
-    def station(self, elements: Ints) -> Ints:
-        """Station of each element."""
-        return elements % self.beam.size
+    def _demand(self, rows: Ints | slice, factor: Floats) -> Demand:
+        return _grown(self.rest.take(rows), self.share.take(rows), factor[self.beam[rows]])
 
-    def _utilisation(self, prepared: Any, rest: Demand, share: Demand, factor: Floats) -> Floats:
-        """What cannot be worked out counts as exceeding."""
-        found = self.state.check(prepared, _grown(rest, share, factor)).utilisation
-        return np.where(np.isnan(found), np.inf, found)
+
+def utilisation_everywhere(
+    state: LimitState, basis: Any, size: int, demand: Callable[[slice], Demand]
+) -> Floats:
+    """Utilisation of a limit state at all elements (E), given the demand of some of them."""
+    found = np.empty(size)
+    for start in range(0, size, _AT_ONCE):
+        rows = slice(start, start + _AT_ONCE)
+        found[rows] = state.quick.utilisation(basis.take(rows), demand(rows))
+    return found
+
+
+def _counted(utilisation: Floats) -> Floats:
+    """What cannot be worked out counts as exceeding."""
+    return np.where(np.isnan(utilisation), np.inf, utilisation)
 
 
 def rating_factors(
-    states: Sequence[LimitState],
-    prepared: Any,
-    total: Demand,
-    share: Demand,
-    beam: Ints,
-    beams: int,
+    states: Sequence[LimitState], bases: Sequence[Any], elements: Elements, share: Demand
 ) -> Factors:
     """Solve the rating factor of one case on all beams at once.
 
@@ -83,30 +94,47 @@ def rating_factors(
     ----------
     states
         The counted limit states.
-    prepared
-        The standard's arrays at the stations (N).
-    total, share
-        Demand of everything, and the part of it that the rated case makes (..., N).
-    beam
-        Beam of each station (N), ascending from 0.
-    beams
-        Number of beams (B).
+    bases
+        What each of them needs, at the elements (E).
+    elements
+        Demand of everything.
+    share
+        The part of it that the rated case makes (E).
 
     Returns
     -------
     Factors
         Accurate to 1e-8 relative.
     """
-    rest = _less(total, share)
+    beams = elements.first_of_beam.size
     factor = np.full(beams, np.inf)
     state_row = np.full(beams, -1, dtype=np.intp)
     element = np.full(beams, -1, dtype=np.intp)
-    for row in sorted(range(len(states)), key=lambda i: not states[i].linear):
-        problem = _Problem(states[row], prepared, rest, share, beam)
-        found, at = _least_factor(problem, np.minimum(factor, GREATEST_FACTOR))
+    problems = _problems(states, bases, elements, share)
+    for row in sorted(range(len(problems)), key=lambda i: not states[i].linear):
+        found, at = _least_factor(problems[row], np.minimum(factor, GREATEST_FACTOR))
         better = found < factor
         factor[better], element[better], state_row[better] = found[better], at[better], row
     return Factors(factor, state_row, element)
+
+
+def _problems(
+    states: Sequence[LimitState], bases: Sequence[Any], elements: Elements, share: Demand
+) -> list[_Problem]:
+    """The limit states at the elements of the beams that the rated case acts on."""
+    moved = (share.moment != 0.0) | (share.shear != 0.0)
+    reached = np.logical_or.reduceat(moved, elements.first_of_beam)[elements.beam]
+    rows: Ints | slice = slice(None) if reached.all() else np.flatnonzero(reached)
+    if not reached.any():
+        return []
+    share = share.take(rows)
+    rest = _less(elements.total.take(rows), share)
+    beam, element = elements.beam[rows], elements.element[rows]
+    taken = {id(basis): basis.take(rows) for basis in bases}
+    return [
+        _Problem(state, taken[id(basis)], rest, share, beam, element)
+        for state, basis in zip(states, bases, strict=True)
+    ]
 
 
 def _least_factor(problem: _Problem, ceiling: Floats) -> tuple[Floats, Ints]:
@@ -116,115 +144,110 @@ def _least_factor(problem: _Problem, ceiling: Floats) -> tuple[Floats, Ints]:
     """
     at = np.full(ceiling.size, -1, dtype=np.intp)
     low, high = np.zeros_like(ceiling), ceiling.copy()
-    reached = _reached(problem, ceiling.size)
-    at_once = np.flatnonzero((problem.everywhere(low) > 1.0) & reached)
-    _mark(at, problem.beam[problem.station(at_once)], at_once)
+    below = problem.everywhere(low)
+    _mark(at, problem, np.flatnonzero(below > 1.0))
     high[at >= 0] = 0.0
-    over = (problem.everywhere(high) > 1.0) & reached
-    upper = _look_inside(problem, over, np.flatnonzero(_may_turn(problem) & reached), high)
-    elements = np.flatnonzero(over)
-    beam = problem.beam[problem.station(elements)]
-    elements, beam = elements[high[beam] > 0.0], beam[high[beam] > 0.0]
-    _mark(at, beam, elements)
-    np.minimum.at(high, beam, upper[elements])
-    _close_in(problem, elements, beam, low, high, at)
+    above = problem.everywhere(high)
+    over = above > 1.0
+    if not problem.state.linear:  # the greater of nothing and a straight line has no hump
+        _look_inside(problem, over, above, high)
+    rows = np.flatnonzero(over & (high[problem.beam] > 0.0))
+    _mark(at, problem, rows)
+    _close_in(problem, rows, _bracket(problem, rows, low, high, below, above), at)
     return np.where(at >= 0, high, np.inf), at
 
 
-def _reached(problem: _Problem, beams: int) -> Bools:
-    """Elements of the beams that the rated case acts on."""
-    share = problem.share
-    moved = (share.moment != 0.0) | (share.shear != 0.0)
-    reached = np.zeros(beams, dtype=np.bool_)
-    reached[problem.beam[np.any(moved.reshape(-1, problem.beam.size), axis=0)]] = True
-    return np.broadcast_to(reached[problem.beam], moved.shape).reshape(-1)
+def _look_inside(problem: _Problem, over: Bools, above: Floats, high: Floats) -> None:
+    """Find elements that exceed within the bracket, where the case first relieves them.
+
+    Mark them in ``over``, lower ``high`` to where they do, and bring ``above``, the utilisation
+    there, up to date.
+    """
+    odd = np.flatnonzero(_may_turn(problem) & (high[problem.beam] > 0.0))
+    if not odd.size:
+        return
+    bound, beam = high.copy(), problem.beam[odd]
+    for fraction in reversed(_INTERIOR):
+        seen = problem.at(odd, fraction * high) > 1.0
+        over[odd[seen]] = True
+        bound[beam[seen]] = fraction * high[beam[seen]]
+    rows = np.flatnonzero((bound < high)[problem.beam] & over)
+    high[:] = bound
+    if rows.size:
+        above[rows] = problem.at(rows, high)
 
 
 def _may_turn(problem: _Problem) -> Bools:
     """Elements whose moment or shear the case first relieves."""
-    opposed = np.zeros(problem.rest.moment.shape, dtype=np.bool_)
+    opposed = np.zeros(problem.beam.size, dtype=np.bool_)
     for name in ("moment", "shear", "critical_shear"):
         opposed |= getattr(problem.rest, name) * getattr(problem.share, name) < 0.0
-    return opposed.reshape(-1)
+    return opposed
 
 
-def _look_inside(problem: _Problem, over: Bools, odd: Ints, high: Floats) -> Floats:
-    """Mark in ``over`` the odd elements that exceed within the bracket; where each was seen to."""
-    upper = np.broadcast_to(high[problem.beam], problem.rest.moment.shape).reshape(-1).copy()
-    beam = problem.beam[problem.station(odd)]
-    for fraction in reversed(_INTERIOR):
-        trial = fraction * high[beam]
-        seen = problem.at(odd, trial) > 1.0
-        over[odd[seen]] = True
-        upper[odd[seen]] = trial[seen]
-    return upper
+@dataclass(frozen=True, slots=True)
+class _Bracket:
+    """Factors between which each beam begins to exceed (B), and by how much it does there."""
+
+    low: Floats
+    high: Floats
+    below: Floats
+    """Greatest utilisation less 1 at ``low``; -1 at least"""
+    above: Floats
 
 
-def _close_in(
-    problem: _Problem, elements: Ints, beam: Ints, low: Floats, high: Floats, at: Ints
-) -> None:
+def _bracket(
+    problem: _Problem, rows: Ints, low: Floats, high: Floats, below: Floats, above: Floats
+) -> _Bracket:
+    """The bracket of each beam from the utilisation of its elements at both ends (E)."""
+    beam = problem.beam[rows]
+    ends = (greatest_of_beams(found[rows] - 1.0, beam, low.size) for found in (below, above))
+    return _Bracket(low, high, *ends)
+
+
+def _close_in(problem: _Problem, rows: Ints, bracket: _Bracket, at: Ints) -> None:
     """Narrow every beam's bracket in place, keeping only elements that can still govern.
 
     Regula falsi in its Illinois form, exact in one step where utilisation is linear; every
     fourth step halves the bracket, for what jumps.
     """
-    beams = low.size
-    below, above = np.full(beams, -1.0), np.full(beams, np.inf)
-    last = np.zeros(beams, dtype=np.intp)
-    if elements.size:
-        below = _excess(problem, elements, beam, low)
-        above = _excess(problem, elements, beam, high)
+    low, high, below, above = bracket.low, bracket.high, bracket.below, bracket.above
+    last = np.zeros(low.size, dtype=np.intp)
     for step in range(1, _MOST_STEPS):
-        if not elements.size:
+        if not rows.size:
             return
-        trial = low + 0.5 * (high - low) if step % 4 == 0 else _chord(low, high, below, above)
-        found = problem.at(elements, trial[beam]) - 1.0
-        excess = _greatest_by_beam(found, beam, beams)
+        beam = problem.beam[rows]
+        trial = low + 0.5 * (high - low) if step % 4 == 0 else _chord(bracket)
+        found = problem.at(rows, trial) - 1.0
+        excess = greatest_of_beams(found, beam, low.size)
         over, under = excess > 0.0, (excess <= 0.0) & np.isfinite(excess)
         hit = found > 0.0
-        _mark(at, beam[hit], elements[hit])
+        _mark(at, problem, rows[hit])
         below[over & (last > 0)] *= 0.5
         above[under & (last < 0)] *= 0.5
         high[over], above[over], last[over] = trial[over], excess[over], 1
         low[under], below[under], last[under] = trial[under], excess[under], -1
         open_ = high - low > _TOLERANCE * np.maximum(high, 1e-6)
-        keep = open_[beam] & (hit | ~over[beam])
-        elements, beam = elements[keep], beam[keep]
+        rows = rows[open_[beam] & (hit | ~over[beam])]
 
 
-def _chord(low: Floats, high: Floats, below: Floats, above: Floats) -> Floats:
+def _chord(bracket: _Bracket) -> Floats:
     """Where the chord crosses 1, a little past it so that the far end closes in too."""
+    low, high, below, above = bracket.low, bracket.high, bracket.below, bracket.above
     with np.errstate(invalid="ignore"):
         share = below / (below - above)
-    share = np.where(np.isfinite(share), share, 0.5)
+    share = np.where(np.isfinite(share) & np.isfinite(above), share, 0.5)
     width = high - low
     nudge = np.minimum(0.25 * _TOLERANCE * np.maximum(high, 1e-6) / np.maximum(width, 1e-300), 0.5)
     return low + width * np.clip(share, nudge, 1.0 - nudge)
 
 
-def _excess(problem: _Problem, elements: Ints, beam: Ints, factor: Floats) -> Floats:
-    return _greatest_by_beam(problem.at(elements, factor[beam]) - 1.0, beam, factor.size)
-
-
-def _greatest_by_beam(values: Floats, beam: Ints, beams: int) -> Floats:
-    greatest = np.full(beams, -np.inf)
-    np.maximum.at(greatest, beam, values)
-    return greatest
-
-
-def _mark(at: Ints, beam: Ints, elements: Ints) -> None:
-    """Keep, for each beam, the first of the elements."""
-    at[beam[::-1]] = elements[::-1]
-
-
-def _flat(demand: Demand, elements: Ints) -> Demand:
-    shape = demand.moment.shape
-    return Demand(
-        **{
-            f.name: np.broadcast_to(getattr(demand, f.name), shape).reshape(-1)[elements]
-            for f in fields(demand)
-        }
-    )
+def _mark(at: Ints, problem: _Problem, rows: Ints) -> None:
+    """Note, for each beam, the first in the batch of some elements."""
+    if rows.size:
+        beam = problem.beam[rows]
+        first = np.flatnonzero(np.diff(beam, prepend=-1))
+        at[beam[first]] = np.minimum.reduceat(problem.element[rows], first)
 
 
 def _less(total: Demand, share: Demand) -> Demand:
@@ -235,13 +258,14 @@ def _grown(rest: Demand, share: Demand, factor: Floats) -> Demand:
     return _linear(rest, share, lambda base, part: base + factor * part)
 
 
-def _linear(first: Demand, second: Demand, join: Any) -> Demand:
+def _linear(first: Demand, second: Demand, join: Callable[[Floats, Floats], Floats]) -> Demand:
+    """Demand of two parts together; what can sag or hog holds for every factor."""
     return Demand(
-        **{
-            f.name: join(getattr(first, f.name), getattr(second, f.name))
-            for f in fields(first)
-            if not f.name.startswith("can_")
-        },
-        can_sag=first.can_sag | second.can_sag,
-        can_hog=first.can_hog | second.can_hog,
+        moment=join(first.moment, second.moment),
+        shear=join(first.shear, second.shear),
+        critical_shear=join(first.critical_shear, second.critical_shear),
+        peak_sagging=join(first.peak_sagging, second.peak_sagging),
+        peak_hogging=join(first.peak_hogging, second.peak_hogging),
+        can_sag=first.can_sag,
+        can_hog=first.can_hog,
     )

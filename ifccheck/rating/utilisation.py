@@ -1,4 +1,4 @@
-"""The greatest utilisation of each beam, and where it stands, from a check at every station."""
+"""The greatest utilisation of each beam, and where it stands, from a check at every element."""
 
 from __future__ import annotations
 
@@ -7,7 +7,7 @@ from dataclasses import dataclass
 import numpy as np
 
 from ifccheck.mechanics.arrays import Bools, Floats, Ints
-from ifccheck.standards import Check
+from ifccheck.rating.elements import first_greatest
 
 
 @dataclass(frozen=True, slots=True)
@@ -26,34 +26,27 @@ class Worst:
     incomplete_element: Ints
     """(B); meaningful where incomplete"""
 
+    @property
+    def shown(self) -> Ints:
+        """The element that a rating tells of (B): one without a utilisation, unless another
+        exceeds 1."""
+        incomplete = self.incomplete & (self.utilisation <= 1.0)
+        return np.where(incomplete, self.incomplete_element, self.element)
 
-def worst_of(check: Check, first_station: Ints) -> Worst:
+
+def worst_of(utilisation: Floats, element: Ints, first: Ints) -> Worst:
     """Find the greatest utilisation of every beam.
 
     Parameters
     ----------
-    check
-        A limit state at (..., N) arrangements and stations.
-    first_station
-        First station of each beam, ascending (B); beams follow one another without a gap.
+    utilisation
+        Utilisation of a limit state at every element, beam after beam (E).
+    element
+        What each stands for (E).
+    first
+        Row of the first element of each beam, ascending (B).
     """
-    stations = check.utilisation.shape[-1]
-    utilisation = check.utilisation.reshape(-1, stations)
     missing = np.isnan(utilisation)
-    known = np.where(missing, -np.inf, utilisation)
-    greatest, element = _first_greatest(known, first_station)
-    lacks, lacking_element = _first_greatest(missing.astype(np.float64), first_station)
-    return Worst(np.maximum(greatest, 0.0), element, lacks > 0.0, lacking_element)
-
-
-def _first_greatest(values: Floats, first_station: Ints) -> tuple[Floats, Ints]:
-    """Greatest value of each beam over all rows, and its flattened element."""
-    stations = values.shape[-1]
-    row = np.argmax(values, axis=0)
-    column_best = values[row, np.arange(stations)]
-    best = np.maximum.reduceat(column_best, first_station)
-    lengths = np.diff(np.append(first_station, stations))
-    is_best = column_best == np.repeat(best, lengths)
-    candidates = np.where(is_best, np.arange(stations), stations)
-    station = np.minimum.reduceat(candidates, first_station)
-    return best, row[station] * stations + station
+    greatest, row = first_greatest(np.where(missing, -np.inf, utilisation), first)
+    lacks, lacking = first_greatest(missing.astype(np.float64), first)
+    return Worst(np.maximum(greatest, 0.0), element[row], lacks > 0.0, element[lacking])

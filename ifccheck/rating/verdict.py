@@ -6,10 +6,8 @@ import math
 from collections.abc import Sequence
 from dataclasses import dataclass, replace
 
-import numpy as np
-
 from ifccheck.beam import Combination, Face, Load, Nature, Reason, Verdict
-from ifccheck.mechanics.arrays import Bools, Floats
+from ifccheck.mechanics.arrays import Floats
 from ifccheck.rating.factors import Factors
 from ifccheck.rating.results import LimitStateRating, SafeLoad
 from ifccheck.rating.utilisation import Worst
@@ -24,8 +22,9 @@ class Evaluated:
     """One limit state on all beams of a batch."""
 
     state: LimitState
-    check: Check
     worst: Worst
+    shown: Check
+    """The whole check where a rating tells of it (B)"""
 
 
 @dataclass(frozen=True, slots=True)
@@ -58,10 +57,10 @@ def limit_state_rating(
     A nan at any station makes the whole limit state nan, unless another station exceeds 1;
     outside no clause's range it comes from what is ``missing``.
     """
-    worst, state, check = found.worst, found.state, found.check
+    worst, state, check = found.worst, found.state, found.shown
     utilisation = float(worst.utilisation[beam])
     incomplete = bool(worst.incomplete[beam]) and utilisation <= 1.0
-    element = int((worst.incomplete_element if incomplete else worst.element)[beam])
+    element = int(worst.shown[beam])
     demanded = incomplete or utilisation > 0.0
     return LimitStateRating(
         name=state.name,
@@ -70,29 +69,20 @@ def limit_state_rating(
         utilisation=math.nan if incomplete else utilisation,
         position=places.position(element) if demanded else math.nan,
         combination=places.combination(element, beam) if demanded else "",
-        demand=_at(check.demand, check, element) if demanded else 0.0,
-        resistance=_at(check.resistance, check, element) if demanded else math.nan,
+        demand=float(check.demand[beam]) if demanded else 0.0,
+        resistance=float(check.resistance[beam]) if demanded else math.nan,
         demand_unit=state.demand_unit,
         clause=state.clause,
         counted=True,
-        why_not=(_outside(check, element) or missing) if incomplete else "",
+        why_not=(_outside(check, beam) or missing) if incomplete else "",
     )
 
 
-def _at(values: Floats | Bools, check: Check, element: int) -> float:
-    place = np.unravel_index(element, check.utilisation.shape)
-    return float(np.broadcast_to(values, check.utilisation.shape)[place])
-
-
-def _outside(check: Check, element: int) -> str | None:
-    return next(
-        (
-            f"outside {outside.clause}: {outside.text}"
-            for outside in check.outside
-            if _at(outside.mask, check, element)
-        ),
-        None,
-    )
+def _outside(check: Check, beam: int) -> str | None:
+    for outside in check.outside:
+        if outside.mask[beam]:
+            return f"outside {outside.clause}: {outside.text}"
+    return None
 
 
 def with_unknown_steel(

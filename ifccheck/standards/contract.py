@@ -23,7 +23,7 @@ class Prepared(Protocol):
     A frozen dataclass whose array fields all have the stations as their first axis.
     """
 
-    def take(self, rows: Ints) -> Prepared:
+    def take(self, rows: Ints | slice) -> Prepared:
         """The same at the given stations; rows may repeat."""
         ...
 
@@ -74,6 +74,29 @@ class CalculationLine:
 
 
 @dataclass(frozen=True, slots=True)
+class Column:
+    """A basis of one array, with a row for each station (N)."""
+
+    values: Floats
+
+    def take(self, rows: Ints | slice) -> Column:
+        """The same at the given stations; rows may repeat."""
+        return Column(self.values[rows])
+
+
+@dataclass(frozen=True, slots=True)
+class Quick:
+    """The utilisation of a limit state alone, for the many places where nothing is printed."""
+
+    basis: Callable[[Any], Prepared]
+    """Of a Prepared, what ``utilisation`` needs; limit states that share the function share
+    what it gives"""
+    utilisation: Callable[[Any, Demand], Floats]
+    """Check.utilisation, given that basis; demand and basis may hold any stations in any order,
+    so that arrays are (N)"""
+
+
+@dataclass(frozen=True, slots=True)
 class LimitState:
     """A way in which a beam can fall short."""
 
@@ -89,6 +112,7 @@ class LimitState:
     linear: bool
     """Demand is linear in the loads and resistance does not depend on them."""
     check: Callable[[Any, Demand], Check]
+    quick: Quick
     lines: tuple[CalculationLine, ...]
 
 

@@ -8,7 +8,15 @@ import numpy as np
 
 from ifccheck.beam import Face
 from ifccheck.mechanics.arrays import Bools, Demand, Floats
-from ifccheck.standards.contract import CalculationLine, Check, LimitState, Note, Outside
+from ifccheck.standards.contract import (
+    CalculationLine,
+    Check,
+    Column,
+    LimitState,
+    Note,
+    Outside,
+    Quick,
+)
 from ifccheck.standards.csa_a23_3_14 import materials
 from ifccheck.standards.csa_a23_3_14.faces import FaceState, ductility_limit
 from ifccheck.standards.csa_a23_3_14.sections import Prepared
@@ -59,14 +67,36 @@ class FlexureDetails:
 
 def _check_sagging(prepared: Prepared, demand: Demand) -> Check:
     """Flexure with the soffit in tension."""
-    moment = np.maximum(demand.moment, 0.0)
-    return _check(prepared, prepared.sagging, moment)
+    return _check(prepared, prepared.sagging, _sagging(demand))
 
 
 def _check_hogging(prepared: Prepared, demand: Demand) -> Check:
     """Flexure with the top in tension."""
-    moment = np.maximum(-demand.moment, 0.0)
-    return _check(prepared, prepared.hogging, moment)
+    return _check(prepared, prepared.hogging, _hogging(demand))
+
+
+def _sagging(demand: Demand) -> Floats:
+    return np.maximum(demand.moment, 0.0)
+
+
+def _hogging(demand: Demand) -> Floats:
+    return np.maximum(-demand.moment, 0.0)
+
+
+def _soffit_resistance(prepared: Prepared) -> Column:
+    return Column(prepared.sagging.moment_resistance)
+
+
+def _top_resistance(prepared: Prepared) -> Column:
+    return Column(prepared.hogging.moment_resistance)
+
+
+def _sagging_utilisation(resistance: Column, demand: Demand) -> Floats:
+    return utilisation(_sagging(demand), resistance.values)
+
+
+def _hogging_utilisation(resistance: Column, demand: Demand) -> Floats:
+    return utilisation(_hogging(demand), resistance.values)
 
 
 def _check(prepared: Prepared, face: FaceState, moment: Floats) -> Check:
@@ -280,6 +310,7 @@ FLEXURE_SAGGING = LimitState(
     demand_unit="N*mm",
     linear=True,
     check=_check_sagging,
+    quick=Quick(_soffit_resistance, _sagging_utilisation),
     lines=LINES,
 )
 
@@ -291,5 +322,6 @@ FLEXURE_HOGGING = LimitState(
     demand_unit="N*mm",
     linear=True,
     check=_check_hogging,
+    quick=Quick(_top_resistance, _hogging_utilisation),
     lines=LINES,
 )

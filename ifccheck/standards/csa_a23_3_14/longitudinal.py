@@ -6,10 +6,17 @@ from dataclasses import dataclass, fields, replace
 
 import numpy as np
 
+from ifccheck.mechanics.angles import cotangent
 from ifccheck.mechanics.arrays import Bools, Demand, Floats
-from ifccheck.standards.contract import CalculationLine, Check, LimitState
+from ifccheck.standards.contract import CalculationLine, Check, LimitState, Quick
 from ifccheck.standards.csa_a23_3_14.sections import Prepared
-from ifccheck.standards.csa_a23_3_14.shear_check import ShearDetails, evaluate, outside_of
+from ifccheck.standards.csa_a23_3_14.shear_check import (
+    Section,
+    ShearDetails,
+    evaluate,
+    outside_of,
+    sections,
+)
 from ifccheck.standards.csa_a23_3_14.shear_lines import (
     CRACK_LINES,
     SECTION_LINES,
@@ -17,7 +24,8 @@ from ifccheck.standards.csa_a23_3_14.shear_lines import (
     STIRRUP_TERM_LINES,
     given,
 )
-from ifccheck.standards.csa_a23_3_14.tension_face import TensionFace, utilisation_of, worse_face
+from ifccheck.standards.csa_a23_3_14.tension_face import Faces, utilisation_of, worse_face
+from ifccheck.standards.csa_a23_3_14.web import Acting, Cracked, Web, acting, crack, webs
 
 
 def tension_side_force(
@@ -75,9 +83,8 @@ def tension_side_force(
     ----------
     CSA A23.3-14, 11.3.9.2, 11.3.9.4
     """
-    shift = (shear - 0.5 * np.minimum(stirrup_term, shear)) / np.tan(np.radians(theta))
-    own = moment / shear_depth
-    return np.fmin(own + shift, greatest_moment / lever_arm)
+    shift = _shift(shear, stirrup_term, cotangent(theta))
+    return _tension_side(moment / shear_depth, shift, greatest_moment / lever_arm)
 
 
 def compression_side_force(
@@ -118,9 +125,24 @@ def compression_side_force(
     ----------
     CSA A23.3-14, 11.3.9.3
     """
-    shift = (shear - 0.5 * np.minimum(stirrup_term, shear)) / np.tan(np.radians(theta))
-    limit = greatest_moment / lever_arm
-    return np.maximum(np.fmin(shift - moment / shear_depth, limit), 0.0)
+    shift = _shift(shear, stirrup_term, cotangent(theta))
+    return _compression_side(moment / shear_depth, shift, greatest_moment / lever_arm)
+
+
+def _shift(shear: Floats, stirrup_term: Floats, cot_theta: Floats) -> Floats:
+    """Tension that shear adds on either side [N]."""
+    shift: Floats = (shear - 0.5 * np.minimum(stirrup_term, shear)) * cot_theta
+    return shift
+
+
+def _tension_side(by_moment: Floats, shift: Floats, limit: Floats) -> Floats:
+    force: Floats = np.fmin(by_moment + shift, limit)
+    return force
+
+
+def _compression_side(by_moment: Floats, shift: Floats, limit: Floats) -> Floats:
+    force: Floats = np.maximum(np.fmin(shift - by_moment, limit), 0.0)
+    return force
 
 
 @dataclass(frozen=True, slots=True)
@@ -147,7 +169,7 @@ def check(prepared: Prepared, demand: Demand) -> Check:
     The shear is that of the place itself, not the lesser one of the critical section, while Vs
     and theta are those of the shear check: never less than the clause asks for.
     """
-    details, utilisation = worse_face(prepared, demand, _evaluate)
+    details, utilisation = worse_face(sections(prepared), demand, _evaluate)
     return Check(
         demand=details.force,
         resistance=np.where(details.beyond_materials, np.nan, details.steel),
@@ -157,79 +179,102 @@ def check(prepared: Prepared, demand: Demand) -> Check:
     )
 
 
-def _evaluate(face: TensionFace, demand: Demand) -> tuple[LongitudinalDetails, Floats]:
-    with np.errstate(divide="ignore", invalid="ignore"):
-        return _both_sides(face, demand, evaluate(face, demand))
+def utilisation(faces: Faces[Web], demand: Demand) -> Floats:
+    """Utilisation in longitudinal tension alone."""
+    with np.errstate(divide="ignore", invalid="ignore", over="ignore"):
+        return worse_face(faces, demand, _utilisation)[1]
 
 
-def _both_sides(
-    face: TensionFace, demand: Demand, shear: ShearDetails
-) -> tuple[LongitudinalDetails, Floats]:
+def _utilisation(web: Web, demand: Demand) -> tuple[None, Floats]:
+    acts = acting(demand)
+    return None, _both_sides(web, demand, acts, crack(web, acts)).utilisation
+
+
+def _evaluate(section: Section, demand: Demand) -> tuple[LongitudinalDetails, Floats]:
+    web, (shear, cracked) = section.web, evaluate(section, demand)
+    with np.errstate(divide="ignore", invalid="ignore", over="ignore"):
+        sides = _both_sides(web, demand, acting(demand), cracked)
+    governs, (peak, other_peak) = sides.compressed, _peaks(web, demand)
+    known = replace(shear, stirrup_term=sides.stirrup_term)
+    details = LongitudinalDetails(
+        **{f.name: getattr(known, f.name) for f in fields(known)},
+        greatest_moment=np.where(governs, other_peak, peak),
+        lever_arm=np.where(governs, web.other_lever_arm, web.lever_arm),
+        tension_side=~governs & ~sides.outside,
+        compression_side=governs & ~sides.outside,
+        by_limit=sides.outside,
+        force=sides.force,
+        steel=sides.steel,
+    )
+    return details, sides.utilisation
+
+
+@dataclass(frozen=True, slots=True)
+class _Sides:
+    """The worse of the flexural tension side and the compression side."""
+
+    compressed: Bools
+    """The flexural compression side governs"""
+    outside: Bools
+    """The angle is outside its range"""
+    stirrup_term: Floats
+    """Vs, as far as it is known [N]"""
+    force: Floats
+    """[N]"""
+    steel: Floats
+    """phi_s fy As of the side that governs [N]"""
+    utilisation: Floats
+
+
+def _both_sides(web: Web, demand: Demand, acts: Acting, cracked: Cracked) -> _Sides:
     """The worse of both sides.
 
     Where theta or the stirrups are not known, the force that need not be exceeded stands in;
     the steel that suffices for that suffices, and nothing is said otherwise.
     """
-    legs_unknown = np.isnan(face.stirrup_area)
-    outside = shear.beyond_strain | shear.beyond_simplified | shear.without_steel
-    known = replace(shear, stirrup_term=np.where(legs_unknown, 0.0, shear.stirrup_term))
-    theta = np.where(outside, np.nan, shear.theta)
-    peaks = demand.peak_sagging, demand.peak_hogging
-    peak, other_peak = (np.where(face.top_in_tension, a, b) for a, b in (peaks[::-1], peaks))
-    tension = tension_side_force(
-        moment=shear.moment,
-        shear=shear.own_shear,
-        stirrup_term=known.stirrup_term,
-        shear_depth=shear.shear_depth,
-        theta=theta,
-        greatest_moment=peak,
-        lever_arm=face.lever_arm,
-    )
-    compression = _compression(face, demand, known, theta, other_peak)
-    first = utilisation_of(tension, face.steel, face.inside)
-    second = utilisation_of(compression, face.other_steel, face.inside)
-    governs = second > first
-    steel = np.where(governs, face.other_steel, face.steel)
-    utilisation = np.where(governs, second, first)
-    doubtful = (outside | legs_unknown) & (utilisation > 1.0) & (steel > 0.0)
-    missing = doubtful | (face.beyond_materials & (utilisation > 0.0))
-    details = LongitudinalDetails(
-        **{f.name: getattr(known, f.name) for f in fields(known)},
-        greatest_moment=np.where(governs, other_peak, peak),
-        lever_arm=np.where(governs, face.other_lever_arm, face.lever_arm),
-        tension_side=~governs & ~outside,
-        compression_side=governs & ~outside,
-        by_limit=outside,
-        force=np.where(governs, compression, tension),
-        steel=steel,
-    )
-    return details, np.where(missing, np.nan, utilisation)
+    outside = cracked.beyond_strain | web.beyond_simplified
+    outside |= ~(web.simplified | (cracked.area > 0.0))
+    stirrup_term = np.where(web.legs_unknown, 0.0, cracked.stirrup_term)
+    cot_theta = np.where(outside, np.nan, cracked.cot_theta)
+    shift = _shift(acts.own_shear, stirrup_term, cot_theta)
+    by_moment = acts.moment / web.shear_depth
+    peak, other_peak = _peaks(web, demand)
+    tension = _tension_side(by_moment, shift, peak / web.lever_arm)
+    force, steel = tension, web.steel
+    found = utilisation_of(tension, steel, web.inside)
+    compressed = np.zeros(found.shape, dtype=np.bool_)
+    if other_peak.any():  # where no moment ever tensions that side, there is no force
+        limit = other_peak / web.other_lever_arm
+        compression = _compression_side(by_moment, shift, limit)
+        compression = np.where(_in_fan(web, demand, cot_theta), 0.0, compression)
+        second = utilisation_of(compression, web.other_steel, web.inside)
+        compressed = second > found
+        force = np.where(compressed, compression, tension)
+        steel = np.where(compressed, web.other_steel, steel)
+        found = np.where(compressed, second, found)
+    doubtful = (outside | web.legs_unknown) & (found > 1.0) & (steel > 0.0)
+    missing = doubtful | (web.beyond_materials & (found > 0.0))
+    utilisation = np.where(missing, np.nan, found)
+    return _Sides(compressed, outside, stirrup_term, force, steel, utilisation)
 
 
-def _compression(
-    face: TensionFace, demand: Demand, shear: ShearDetails, theta: Floats, peak: Floats
-) -> Floats:
-    """Tension on the compression side; none where no moment ever tensions that side, nor where
-    the inclined crack that would tension it starts beyond the face of a support.
+def _peaks(web: Web, demand: Demand) -> tuple[Floats, Floats]:
+    """Greatest moment that tensions this face, and the other one."""
+    if web.top:
+        return demand.peak_hogging, demand.peak_sagging
+    return demand.peak_sagging, demand.peak_hogging
 
-    That crack starts dv cot(theta) away on the side to which the moment lessens; within that
-    length of a face the compression fans out from the support and no such crack forms.
+
+def _in_fan(web: Web, demand: Demand, cot_theta: Floats) -> Bools:
+    """Whether the inclined crack that would tension the compression side starts beyond a face.
+
+    It starts dv cot(theta) away on the side to which the moment lessens; within that length of
+    the face of a support the compression fans out from the support and no such crack forms.
     """
-    if not peak.any():
-        return np.zeros(shear.own_shear.shape)
-    force = compression_side_force(
-        moment=shear.moment,
-        shear=shear.own_shear,
-        stirrup_term=shear.stirrup_term,
-        shear_depth=shear.shear_depth,
-        theta=theta,
-        greatest_moment=peak,
-        lever_arm=face.other_lever_arm,
-    )
-    sense = np.where(face.top_in_tension, -1.0, 1.0)
-    to_face = np.where(sense * demand.shear > 0.0, face.start_distance, face.end_distance)
-    in_fan = to_face * np.tan(np.radians(theta)) < shear.shear_depth
-    return np.where(in_fan, 0.0, force)
+    lessens_to_start = demand.shear < 0.0 if web.top else demand.shear > 0.0
+    to_face = np.where(lessens_to_start, web.start_distance, web.end_distance)
+    fan: Bools = to_face < web.shear_depth * cot_theta
+    return fan
 
 
 FORCE_LINES = (
@@ -273,5 +318,6 @@ LONGITUDINAL = LimitState(
     demand_unit="N",
     linear=False,
     check=check,
+    quick=Quick(webs, utilisation),
     lines=(*SECTION_LINES, *STIRRUP_LINES, *CRACK_LINES, *STIRRUP_TERM_LINES, *FORCE_LINES),
 )

@@ -7,7 +7,14 @@ from dataclasses import dataclass, fields, replace
 import numpy as np
 
 from ifccheck.mechanics.arrays import Bools, Demand, Floats
-from ifccheck.standards.contract import CalculationLine, Check, LimitState, Note
+from ifccheck.standards.contract import (
+    CalculationLine,
+    Check,
+    Column,
+    LimitState,
+    Note,
+    Quick,
+)
 from ifccheck.standards.csa_a23_3_14.materials import GREATEST_YIELD
 from ifccheck.standards.csa_a23_3_14.sections import Prepared
 from ifccheck.standards.csa_a23_3_14.shear_lines import given
@@ -43,9 +50,7 @@ def check(prepared: Prepared, demand: Demand) -> Check:
     them its resistance is Vc. Does not depend on the loads.
     """
     details = _details(prepared)
-    with np.errstate(divide="ignore", invalid="ignore"):
-        ratio = np.where(details.provided == 0.0, np.inf, details.required / details.provided)
-    utilisation = np.where(details.needed & prepared.inside, ratio, 0.0)
+    utilisation = _utilisation(details, prepared.inside)
     shape = demand.moment.shape
     return Check(
         demand=np.broadcast_to(np.where(details.needed, details.required, 0.0), shape),
@@ -61,6 +66,21 @@ def _broadcast(details: MinimumStirrupDetails, shape: tuple[int, ...]) -> Minimu
         details,
         **{f.name: np.broadcast_to(getattr(details, f.name), shape) for f in fields(details)},
     )
+
+
+def _utilisation(details: MinimumStirrupDetails, inside: Bools) -> Floats:
+    with np.errstate(divide="ignore", invalid="ignore"):
+        ratio = np.where(details.provided == 0.0, np.inf, details.required / details.provided)
+    return np.where(details.needed & inside, ratio, 0.0)
+
+
+def _utilisation_of_stations(prepared: Prepared) -> Column:
+    return Column(_utilisation(_details(prepared), prepared.inside))
+
+
+def _unchanged(utilisation: Column, demand: Demand) -> Floats:
+    """The utilisation of each station, whatever the loads."""
+    return utilisation.values
 
 
 def _details(prepared: Prepared) -> MinimumStirrupDetails:
@@ -141,5 +161,6 @@ MINIMUM_STIRRUPS = LimitState(
     demand_unit="mm2/mm",
     linear=False,
     check=check,
+    quick=Quick(_utilisation_of_stations, _unchanged),
     lines=LINES,
 )

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import numpy as np
 
+from ifccheck.mechanics.angles import cotangent
 from ifccheck.mechanics.arrays import Bools, Floats
 from ifccheck.standards.csa_a23_3_14.materials import CONCRETE_FACTOR, STEEL_FACTOR, STEEL_MODULUS
 
@@ -334,7 +335,7 @@ def stirrup_resistance(
     CSA A23.3-14, 11.3.5.1
     """
     force = steel_factor * stirrup_area * stirrup_yield
-    return force * shear_depth / np.tan(np.radians(theta)) / stirrup_spacing
+    return force * shear_depth * cotangent(theta) / stirrup_spacing
 
 
 def greatest_resistance(

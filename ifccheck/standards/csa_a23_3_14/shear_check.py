@@ -2,22 +2,27 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, fields
 from typing import Any
 
 import numpy as np
 
 from ifccheck.mechanics.arrays import Bools, Demand, Floats, Ints
-from ifccheck.standards.contract import Check, LimitState, Outside
+from ifccheck.standards.contract import Check, LimitState, Outside, Quick
 from ifccheck.standards.csa_a23_3_14 import shear as formulas
 from ifccheck.standards.csa_a23_3_14.sections import Prepared
 from ifccheck.standards.csa_a23_3_14.shear_lines import SHEAR_LINES
-from ifccheck.standards.csa_a23_3_14.stirrups import greatest_stirrup_spacing, minimum_stirrup_area
-from ifccheck.standards.csa_a23_3_14.tension_face import (
-    TensionFace,
-    put,
-    utilisation_of,
-    worse_face,
+from ifccheck.standards.csa_a23_3_14.stirrups import greatest_stirrup_spacing
+from ifccheck.standards.csa_a23_3_14.tension_face import Faces, utilisation_of, worse_face
+from ifccheck.standards.csa_a23_3_14.web import (
+    Acting,
+    Cracked,
+    Web,
+    acting,
+    crack,
+    minimum_area,
+    web,
+    webs,
 )
 
 
@@ -82,237 +87,168 @@ class ShearDetails:
     beyond_materials: Bools
 
 
-def evaluate(face: TensionFace, demand: Demand) -> ShearDetails:
-    """Work out the shear resistance with one face in tension.
+@dataclass(frozen=True, slots=True)
+class Section:
+    """A section with one face in tension, with all that its calculation prints; one row per
+    station (N)."""
 
-    The range of each method is kept: outside it the resistance is nan. A face that holds no
-    tension steel at all resists no shear, for clause 11.3 presumes that steel.
-    """
-    acting = _Acting(np.abs(demand.critical_shear), np.abs(demand.shear), np.abs(demand.moment))
-    with np.errstate(divide="ignore", invalid="ignore", over="ignore"):
-        strain = _strain(face, acting)
-        stirrups = _stirrups(face, acting.shear)
-        cracks = _cracks(face, strain, stirrups)
-        return _details(face, acting, strain, stirrups, cracks, _terms(face, stirrups, cracks))
+    web: Web
+    web_width: Floats
+    concrete_strength: Floats
+    density_factor: Floats
+    stirrup_area: Floats
+    stirrup_spacing: Floats
+    stirrup_yield: Floats
+    minimum_stirrup_area: Floats
+
+    @property
+    def shear_depth(self) -> Floats:
+        """dv [mm] (N)"""
+        return self.web.shear_depth
+
+    def take(self, rows: Ints | slice) -> Section:
+        """The same at the given stations; rows may repeat."""
+        arrays = (getattr(self, f.name)[rows] for f in fields(self)[1:])
+        return Section(self.web.take(rows), *arrays)
+
+
+def sections(prepared: Prepared) -> Faces[Section]:
+    """The sections with the soffit and with the top in tension."""
+    return Faces(_section(prepared, top=False), _section(prepared, top=True))
+
+
+def _section(prepared: Prepared, *, top: bool) -> Section:
+    face = prepared.hogging if top else prepared.sagging
+    return Section(
+        web=web(prepared, top=top),
+        web_width=face.web_width,
+        concrete_strength=prepared.concrete_strength,
+        density_factor=prepared.density_factor,
+        stirrup_area=prepared.stirrup_area,
+        stirrup_spacing=prepared.stirrup_spacing,
+        stirrup_yield=prepared.stirrup_yield,
+        minimum_stirrup_area=minimum_area(prepared, face),
+    )
 
 
 @dataclass(frozen=True, slots=True)
-class _Acting:
-    """What acts, without its sense."""
-
-    shear: Floats
-    own_shear: Floats
-    moment: Floats
-
-
-@dataclass(frozen=True, slots=True)
-class _Strain:
-    present: Bools
-    """The face holds tension steel, developed or not, where the strain is taken"""
-    area: Floats
-    distance: Floats
-    moment: Floats
-    strain: Floats
-
-
-@dataclass(frozen=True, slots=True)
-class _Stirrups:
-    minimum: Floats
-    greatest_spacing: Floats
-    present: Bools
-    effective: Bools
-
-
-@dataclass(frozen=True, slots=True)
-class _Terms:
-    concrete: Floats
-    stirrups: Floats
-    greatest: Floats
-
-
-@dataclass(frozen=True, slots=True)
-class _Cracks:
-    aggregate: Floats
-    spacing: Floats
+class _Concrete:
+    crack_spacing: Floats
     beta: Floats
-    theta: Floats
+    term: Floats
+    """Vc [N]"""
 
 
-def _strain(face: TensionFace, acting: _Acting) -> _Strain:
-    """eps_x at the place, or where it is less, at the critical section nearer to midspan.
-
-    The latter is open to a place nearer to a support than its critical section, where the shear
-    at that section is used too; the moment there is bounded from the place's own.
-    """
-    moment = np.maximum(acting.moment, acting.shear * face.shear_depth)
-    own = formulas.longitudinal_strain(
-        moment=moment,
-        shear=acting.shear,
-        shear_depth=face.shear_depth,
-        tension_area=face.tension_area,
-    )
-    at_place = _Strain(
-        present=face.tension_area_full > 0.0,
-        area=face.tension_area,
-        distance=np.zeros(face.shear_depth.shape),
-        moment=moment,
-        strain=own,
-    )
-    nearer = np.nonzero((acting.shear < acting.own_shear) & (face.critical_distance > 0.0))
-    if nearer[0].size == 0:
-        return at_place
-    return _strain_at_critical(face.take(nearer[-1]), acting, at_place, nearer)
-
-
-def _strain_at_critical(
-    face: TensionFace, acting: _Acting, own: _Strain, nearer: tuple[Ints, ...]
-) -> _Strain:
-    """The strain with that at the critical section put in where it is less."""
-    shear, own_shear = acting.shear[nearer], acting.own_shear[nearer]
-    moment = np.maximum(
-        acting.moment[nearer] + own_shear * face.critical_distance, shear * face.shear_depth
-    )
-    strain = formulas.longitudinal_strain(
-        moment=moment, shear=shear, shear_depth=face.shear_depth, tension_area=face.critical_area
-    )
-    less = strain < own.strain[nearer]
-    places = tuple(index[less] for index in nearer)
-    shape = own.strain.shape
-    present = np.broadcast_to(own.present, shape)
-    return _Strain(
-        present=put(present, nearer, present[nearer] | (face.critical_area > 0.0)),
-        area=put(np.broadcast_to(own.area, shape), places, face.critical_area[less]),
-        distance=put(np.broadcast_to(own.distance, shape), places, face.critical_distance[less]),
-        moment=put(own.moment, places, moment[less]),
-        strain=put(own.strain, places, strain[less]),
-    )
-
-
-def _stirrups(face: TensionFace, shear: Floats) -> _Stirrups:
-    minimum = minimum_stirrup_area(
-        concrete_strength=face.concrete_strength,
-        web_width=face.web_width,
-        spacing=face.stirrup_spacing,
-        stirrup_yield=face.stirrup_yield,
-    )
-    greatest = greatest_stirrup_spacing(
-        shear=shear,
-        concrete_strength=face.concrete_strength,
-        density_factor=face.density_factor,
-        web_width=face.web_width,
-        shear_depth=face.shear_depth,
-    )
-    present = face.stirrup_area > 0.0
-    enough = present & (face.stirrup_area >= minimum)
-    return _Stirrups(minimum, greatest, present, enough & (face.stirrup_spacing <= greatest))
-
-
-def _cracks(face: TensionFace, strain: _Strain, stirrups: _Stirrups) -> _Cracks:
-    aggregate = formulas.effective_aggregate_size(
-        concrete_strength=face.concrete_strength, aggregate_size=face.aggregate_size
-    )
-    plain_spacing = formulas.equivalent_crack_spacing(
-        shear_depth=face.shear_depth, aggregate_size=aggregate
-    )
-    spacing = np.where(stirrups.effective, formulas.STIRRUP_CRACK_SPACING, plain_spacing)
-    if face.simplified.all():
+def _concrete(web: Web, cracked: Cracked) -> _Concrete:
+    effective = cracked.effective
+    spacing = np.where(effective, formulas.STIRRUP_CRACK_SPACING, web.crack_spacing)
+    if web.simplified.all():
         beta = formulas.simplified_beta(
-            stirrups=stirrups.effective,
-            shear_depth=face.shear_depth,
-            crack_spacing=plain_spacing,
-            aggregate_size=aggregate,
+            stirrups=effective,
+            shear_depth=web.shear_depth,
+            crack_spacing=web.crack_spacing,
+            aggregate_size=web.aggregate_size,
         )
-        theta = np.full(face.shear_depth.shape, formulas.SIMPLIFIED_THETA)
-        return _Cracks(aggregate, spacing, beta, theta)
-    return _Cracks(
-        aggregate=aggregate,
-        spacing=spacing,
-        beta=formulas.general_beta(strain=strain.strain, crack_spacing=spacing),
-        theta=formulas.general_theta(strain=strain.strain),
-    )
+    else:
+        beta = formulas.general_beta(strain=cracked.strain, crack_spacing=spacing)
+    return _Concrete(spacing, beta, web.concrete_unit * beta)
 
 
-def _terms(face: TensionFace, stirrups: _Stirrups, cracks: _Cracks) -> _Terms:
-    concrete = formulas.concrete_resistance(
-        beta=cracks.beta,
-        concrete_strength=face.concrete_strength,
-        density_factor=face.density_factor,
-        web_width=face.web_width,
-        shear_depth=face.shear_depth,
-    )
-    steel = formulas.stirrup_resistance(
-        stirrup_area=face.stirrup_area,
-        stirrup_yield=face.stirrup_yield,
-        stirrup_spacing=face.stirrup_spacing,
-        shear_depth=face.shear_depth,
-        theta=cracks.theta,
-    )
-    idle = np.where(np.isnan(face.stirrup_area), np.nan, 0.0)
-    greatest = formulas.greatest_resistance(
-        concrete_strength=face.concrete_strength,
-        web_width=face.web_width,
-        shear_depth=face.shear_depth,
-    )
-    return _Terms(concrete, np.where(stirrups.effective, steel, idle), greatest)
+def _resistance(web: Web, cracked: Cracked, concrete: _Concrete) -> Floats:
+    """Vr [N]; nan outside the range of the method.
+
+    A face that holds no tension steel at all resists no shear, for clause 11.3 presumes that
+    steel.
+    """
+    resistance = np.minimum(concrete.term + cracked.stirrup_term, web.greatest)
+    outside = cracked.beyond_strain | web.beyond_simplified | web.beyond_materials
+    return np.where(outside, np.nan, np.where(cracked.has_steel, resistance, 0.0))
 
 
-def _details(
-    face: TensionFace,
-    acting: _Acting,
-    strain: _Strain,
-    stirrups: _Stirrups,
-    cracks: _Cracks,
-    terms: _Terms,
-) -> ShearDetails:
-    beyond_strain = strain.present & ~face.simplified & (strain.strain > formulas.GREATEST_STRAIN)
-    outside = beyond_strain | face.beyond_simplified | face.beyond_materials
-    resistance = np.minimum(terms.concrete + terms.stirrups, terms.greatest)
-    resistance = np.where(strain.present, resistance, 0.0)
+def _utilisation(web: Web, demand: Demand) -> tuple[None, Floats]:
+    acts = acting(demand)
+    cracked = crack(web, acts)
+    resistance = _resistance(web, cracked, _concrete(web, cracked))
+    return None, utilisation_of(acts.shear, resistance, web.inside)
+
+
+def utilisation(faces: Faces[Web], demand: Demand) -> Floats:
+    """Utilisation in shear alone."""
+    with np.errstate(divide="ignore", invalid="ignore", over="ignore"):
+        return worse_face(faces, demand, _utilisation)[1]
+
+
+def evaluate(section: Section, demand: Demand) -> tuple[ShearDetails, Cracked]:
+    """Work out all that the calculation of shear prints, with one face in tension."""
+    acts = acting(demand)
+    with np.errstate(divide="ignore", invalid="ignore", over="ignore"):
+        cracked = crack(section.web, acts)
+        concrete = _concrete(section.web, cracked)
+        return _details(section, acts, cracked, concrete), cracked
+
+
+def _details(section: Section, acts: Acting, cracked: Cracked, concrete: _Concrete) -> ShearDetails:
+    web = section.web
+    distance = _distance(web, cracked)
     return ShearDetails(
-        shear=acting.shear,
-        own_shear=acting.own_shear,
-        moment=acting.moment,
-        top_in_tension=face.top_in_tension,
-        shear_depth=face.shear_depth,
-        web_width=face.web_width,
-        concrete_strength=face.concrete_strength,
-        density_factor=face.density_factor,
-        aggregate_size=cracks.aggregate,
-        tension_area=strain.area,
-        distance=strain.distance,
-        strain_moment=strain.moment,
-        strain=strain.strain,
-        crack_spacing=cracks.spacing,
-        beta=cracks.beta,
-        theta=cracks.theta,
-        stirrup_area=face.stirrup_area,
-        stirrup_spacing=face.stirrup_spacing,
-        stirrup_yield=face.stirrup_yield,
-        minimum_stirrup_area=stirrups.minimum,
-        greatest_spacing=stirrups.greatest_spacing,
-        concrete_term=terms.concrete,
-        stirrup_term=terms.stirrups,
-        greatest=terms.greatest,
-        steel_present=strain.present.astype(np.float64),
-        resistance=np.where(outside, np.nan, resistance),
-        **_methods(face, strain, stirrups, cracks),
-        beyond_strain=beyond_strain,
-        beyond_simplified=face.beyond_simplified,
-        beyond_materials=face.beyond_materials,
+        shear=acts.shear,
+        own_shear=acts.own_shear,
+        moment=acts.moment,
+        top_in_tension=np.full(web.shear_depth.shape, web.top),
+        shear_depth=web.shear_depth,
+        web_width=section.web_width,
+        concrete_strength=section.concrete_strength,
+        density_factor=section.density_factor,
+        aggregate_size=web.aggregate_size,
+        tension_area=cracked.area,
+        distance=distance,
+        strain_moment=np.maximum(
+            acts.moment + acts.own_shear * distance, acts.shear * web.shear_depth
+        ),
+        strain=cracked.strain,
+        crack_spacing=concrete.crack_spacing,
+        beta=concrete.beta,
+        theta=cracked.theta,
+        stirrup_area=section.stirrup_area,
+        stirrup_spacing=section.stirrup_spacing,
+        stirrup_yield=section.stirrup_yield,
+        minimum_stirrup_area=section.minimum_stirrup_area,
+        greatest_spacing=greatest_stirrup_spacing(
+            shear=acts.shear,
+            concrete_strength=section.concrete_strength,
+            density_factor=section.density_factor,
+            web_width=section.web_width,
+            shear_depth=web.shear_depth,
+        ),
+        concrete_term=concrete.term,
+        stirrup_term=cracked.stirrup_term,
+        greatest=web.greatest,
+        steel_present=cracked.has_steel.astype(np.float64),
+        resistance=_resistance(web, cracked, concrete),
+        **_methods(section, cracked),
+        beyond_strain=cracked.beyond_strain,
+        beyond_simplified=web.beyond_simplified,
+        beyond_materials=web.beyond_materials,
     )
 
 
-def _methods(
-    face: TensionFace, strain: _Strain, stirrups: _Stirrups, cracks: _Cracks
-) -> dict[str, Bools]:
+def _distance(web: Web, cracked: Cracked) -> Floats:
+    """Distance to the section at which the strain is taken [mm]."""
+    distance = np.zeros(cracked.strain.shape)
+    if cracked.at_critical[0].size:
+        distance[cracked.at_critical] = web.critical_distance[cracked.at_critical[-1]]
+    return distance
+
+
+def _methods(section: Section, cracked: Cracked) -> dict[str, Bools]:
     """Which method and which of its forms holds, by the names of the details."""
-    simplified = face.simplified
-    effective, plain = stirrups.effective, ~stirrups.effective
-    by_depth = cracks.aggregate >= formulas.SIMPLIFIED_AGGREGATE
-    general = ~simplified & (strain.area > 0.0)
+    web, effective, plain = section.web, cracked.effective, ~cracked.effective
+    simplified = web.simplified
+    by_depth = web.aggregate_size >= formulas.SIMPLIFIED_AGGREGATE
+    general = ~simplified & (cracked.area > 0.0)
     computable = simplified | general
     return {
-        "has_stirrups": stirrups.present,
+        "has_stirrups": section.stirrup_area > 0.0,
         "effective": effective,
         "plain": plain,
         "general": general,
@@ -324,8 +260,8 @@ def _methods(
         "simplified_plain_spacing": plain & simplified & ~by_depth,
         "computable": computable,
         "without_steel": ~computable,
-        "idle": plain & ~np.isnan(face.stirrup_area),
-        "legs_unknown": np.isnan(face.stirrup_area),
+        "idle": plain & ~web.legs_unknown,
+        "legs_unknown": web.legs_unknown,
         "stirrup_force": effective & computable,
     }
 
@@ -348,14 +284,14 @@ def outside_of(details: Any, checked: Bools) -> tuple[Outside, ...]:
     return tuple(Outside(clause, text, mask & checked) for clause, text, mask in found)
 
 
-def _evaluate(face: TensionFace, demand: Demand) -> tuple[ShearDetails, Floats]:
-    details = evaluate(face, demand)
-    return details, utilisation_of(details.shear, details.resistance, face.inside)
+def _evaluate(section: Section, demand: Demand) -> tuple[ShearDetails, Floats]:
+    details, _ = evaluate(section, demand)
+    return details, utilisation_of(details.shear, details.resistance, section.web.inside)
 
 
 def check(prepared: Prepared, demand: Demand) -> Check:
     """Check shear by 11.3.6.3 or 11.3.6.4 at every station and arrangement."""
-    details, utilisation = worse_face(prepared, demand, _evaluate)
+    details, utilisation = worse_face(sections(prepared), demand, _evaluate)
     shear = np.abs(demand.critical_shear)
     return Check(
         demand=shear,
@@ -374,5 +310,6 @@ SHEAR = LimitState(
     demand_unit="N",
     linear=False,
     check=check,
+    quick=Quick(webs, utilisation),
     lines=SHEAR_LINES,
 )

@@ -52,6 +52,34 @@ def minimum_stirrup_area(
     return 0.06 * np.sqrt(concrete_strength) * web_width * spacing / stirrup_yield
 
 
+def high_shear(
+    *, concrete_strength: Floats, density_factor: Floats, web_width: Floats, shear_depth: Floats
+) -> Floats:
+    """Shear beyond which the widest spacing of stirrups is halved.
+
+    0.125 lambda phi_c f'c bw dv
+
+    Parameters
+    ----------
+    concrete_strength
+        f'c [MPa]
+    density_factor
+        lambda
+    web_width, shear_depth
+        bw, dv [mm]
+
+    Returns
+    -------
+    Floats
+        [N]
+
+    References
+    ----------
+    CSA A23.3-14, 11.3.8.3
+    """
+    return 0.125 * density_factor * CONCRETE_FACTOR * concrete_strength * web_width * shear_depth
+
+
 def greatest_stirrup_spacing(
     *,
     shear: Floats,
@@ -84,6 +112,11 @@ def greatest_stirrup_spacing(
     ----------
     CSA A23.3-14, 11.3.8.1 and 11.3.8.3
     """
-    high = 0.125 * density_factor * CONCRETE_FACTOR * concrete_strength * web_width * shear_depth
+    high = high_shear(
+        concrete_strength=concrete_strength,
+        density_factor=density_factor,
+        web_width=web_width,
+        shear_depth=shear_depth,
+    )
     spacing = np.minimum(0.7 * shear_depth, GREATEST_SPACING)
     return np.where(shear > high, 0.5 * spacing, spacing)

@@ -1,0 +1,118 @@
+"""The distinct elements of a batch: every arrangement at every station, equal ones once."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import dataclass, fields
+from typing import TypeVar
+
+import numpy as np
+
+from ifccheck.analysis.effects import Demands
+from ifccheck.mechanics.arrays import Bools, Demand, Floats, Ints
+
+Values = TypeVar("Values", Floats, Bools)
+
+_ACTING = ("moment", "shear", "critical_shear")
+
+
+@dataclass(frozen=True, slots=True)
+class Elements:
+    """Distinct elements, sorted by station and then by arrangement (E).
+
+    Where the arrangement of the greatest moment is also that of the greatest shear, as it is
+    along half of most beams, it is evaluated once.
+    """
+
+    element: Ints
+    """Index into the flattened (combinations, arrangements, stations)"""
+    station: Ints
+    beam: Ints
+    first_of_station: Ints
+    """First element of each station (N)"""
+    first_of_beam: Ints
+    """First element of each beam (B)"""
+    total: Demand
+    shares: tuple[Demand, ...]
+    """The part that each rated case has"""
+
+
+def distinct_elements(acting: Demands, beam: Ints) -> Elements:
+    """Elements of a batch without those that equal an earlier arrangement.
+
+    Parameters
+    ----------
+    acting
+        Demand of every arrangement (C, A, N).
+    beam
+        Beam of each station (N), ascending from 0, every beam with a station.
+    """
+    shape = acting.total.moment.shape
+    kept = _kept((acting.total, *acting.shares)).reshape(-1, shape[-1])
+    station, row = np.nonzero(np.ascontiguousarray(kept.T))
+    combination, element = row // shape[1], row * shape[-1] + station
+
+    def at(demand: Demand) -> Demand:
+        return Demand(
+            **{
+                f.name: _gather(getattr(demand, f.name), combination, station, element)
+                for f in fields(Demand)
+            }
+        )
+
+    return Elements(
+        element=element,
+        station=station,
+        beam=beam[station],
+        first_of_station=np.flatnonzero(np.diff(station, prepend=-1)),
+        first_of_beam=np.flatnonzero(np.diff(beam[station], prepend=-1)),
+        total=at(acting.total),
+        shares=tuple(at(share) for share in acting.shares),
+    )
+
+
+def _kept(demands: Sequence[Demand]) -> Bools:
+    """Whether an arrangement differs from all earlier ones of its combination (C, A, N).
+
+    The peaks belong to the combination, and what can sag or hog to the station.
+    """
+    shape = demands[0].moment.shape
+    kept = np.ones(shape, dtype=np.bool_)
+    values = [getattr(demand, name) for demand in demands for name in _ACTING]
+    for later in range(1, shape[1]):
+        for earlier in range(later):
+            same = np.ones((shape[0], shape[2]), dtype=np.bool_)
+            for array in values:
+                same &= array[:, later] == array[:, earlier]
+            kept[:, later] &= ~same
+    return kept
+
+
+def _gather(values: Values, combination: Ints, station: Ints, element: Ints) -> Values:
+    """Values (C, A, N) at the elements, without spreading out what is broadcast."""
+    along_combinations, along_arrangements, _ = (stride != 0 for stride in values.strides)
+    if along_arrangements:
+        return values.reshape(-1)[element]
+    first: Values = values[:, 0]
+    if not along_combinations:
+        first, combination = first[:1], np.zeros_like(combination)
+    rows: Ints = combination * values.shape[-1] + station
+    return first.reshape(-1)[rows]
+
+
+def greatest_of_beams(values: Floats, beam: Ints, beams: int) -> Floats:
+    """Greatest value of each beam (B), -inf where it has none; beams ascend."""
+    greatest = np.full(beams, -np.inf)
+    if beam.size:
+        first = np.flatnonzero(np.diff(beam, prepend=-1))
+        greatest[beam[first]] = np.maximum.reduceat(values, first)
+    return greatest
+
+
+def first_greatest(values: Floats, first: Ints) -> tuple[Floats, Ints]:
+    """Greatest value of each stretch that begins at ``first``, and its first row."""
+    greatest = np.maximum.reduceat(values, first)
+    lengths = np.diff(np.append(first, values.size))
+    rows = np.arange(values.size)
+    candidates = np.where(values == np.repeat(greatest, lengths), rows, values.size)
+    return greatest, np.minimum.reduceat(candidates, first)
