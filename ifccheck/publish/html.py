@@ -35,10 +35,9 @@ from ifccheck.publish.templates import asset, template
 from ifccheck.publish.tint import BANDS
 from ifccheck.publish.words import (
     CAUTIONS,
+    covered_phrases,
     factor_words,
-    verdict_phrase,
 )
-from ifccheck.rating import Rating
 
 WORST = 10
 MOST_NAMED = 12
@@ -59,7 +58,7 @@ def render(report: Report) -> str:
         counts=report.counts,
         tallies=_tallies(report.counts),
         proportion=Markup(_proportion(report.counts)),
-        covered=_covered(report.ratings.values()),
+        covered=covered_phrases(report.ratings.values()),
         worst=[row for row in rows if row.utilisation][:WORST],
         cases=[_case(case, report, numbers) for case in report.cases],
         plans=_plans(report, numbers),
@@ -94,12 +93,6 @@ def _policy(style: str, script: str) -> str:
 def _fingerprint(text: str) -> str:
     digest = base64.b64encode(hashlib.sha256(text.encode()).digest()).decode("ascii")
     return f"'sha256-{digest}'"
-
-
-def _covered(ratings: Iterable[Rating]) -> list[tuple[str, int]]:
-    """What the adequate beams are adequate in, each wording with its number of beams."""
-    phrases = Counter(verdict_phrase(r) for r in ratings if r.verdict is Verdict.ADEQUATE)
-    return phrases.most_common()
 
 
 def _style() -> str:

@@ -18,6 +18,7 @@ from ifccheck.publish.elevation import load_words
 from ifccheck.publish.quantities import measure_words, quantity_words
 from ifccheck.publish.report import Report, ratings_in_order
 from ifccheck.publish.words import (
+    covered_phrases,
     factor_words,
     falls_short,
     printable,
@@ -59,6 +60,8 @@ def _table(*columns: str, title: str = "") -> Table:
 def closing_table(report: Report, console: Console, written: Iterable[Path] = ()) -> None:
     """Print how many beams have each verdict, which fall short, and where the files are."""
     console.print(_counts_line(report))
+    for phrase, count in covered_phrases(report.ratings.values()):
+        console.print(_text(f"{count} {phrase}; nothing else was checked"))
     for part in (_cases(report), _short_beams(report), _unrated(report)):
         if part is not None:
             console.print(part)

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import math
 import re
+from collections import Counter
 from collections.abc import Iterable
 
 from ifccheck.beam import Beam, Outline, Verdict
@@ -80,6 +81,12 @@ def verdict_phrase(rating: Rating) -> str:
         short = [state.covers for state in rating.limit_states if falls_short(state.utilisation)]
         return f"falls short in {joined(short or [rating.governing.covers])}"
     return str(rating.verdict)
+
+
+def covered_phrases(ratings: Iterable[Rating]) -> list[tuple[str, int]]:
+    """Return what the adequate beams are adequate in, each wording with its number of beams."""
+    phrases = Counter(verdict_phrase(r) for r in ratings if r.verdict is Verdict.ADEQUATE)
+    return phrases.most_common()
 
 
 def falls_short(utilisation: float) -> bool:
