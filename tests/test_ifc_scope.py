@@ -280,6 +280,7 @@ def test_a_property_that_names_the_material_counts_where_nothing_else_does(
 def test_size_that_looks_like_a_steel_section_does_not_contradict_concrete() -> None:
     assert reasons(only_beam(read_one("Concrete C30/37", Name="W300x500"))) == ""
     assert only_left_out(read_one("", Name="W12x26")).reason == "steel"
+    assert reasons(only_beam(read_one("Concrete C30/37", Name="bearing beam 3"))) == ""
 
 
 def test_hosted_bars_mean_concrete() -> None:
@@ -310,7 +311,7 @@ def test_reinforcement_set_on_steel_proves_nothing() -> None:
     assert only_left_out(building.read()).reason == "steel"
 
 
-@pytest.mark.parametrize("how", ["in the beam", "beside it", "by name", "hollow core"])
+@pytest.mark.parametrize("how", ["in the beam", "beside it", "by name", "hollow core", "by type"])
 def test_prestressed_beams_are_told(how: str) -> None:
     building = Building("IFC4")
     beam = building.beam(solid(building))
@@ -321,6 +322,8 @@ def test_prestressed_beams_are_told(how: str) -> None:
         building.give_parts(assembly, beam, building.root("IfcTendon", NominalDiameter=15.2))
     elif how == "by name":
         beam.Name = "Prestressed girder"
+    elif how == "by type":
+        building.give_type(beam, Name="HC 265", PredefinedType="HOLLOWCORE")
     else:
         beam.PredefinedType = "HOLLOWCORE"
     assert "prestressed" in reasons(only_beam(building.read()))
@@ -363,6 +366,7 @@ def test_tendon_without_a_place_is_a_doubt_of_the_model() -> None:
         ("LC25/28", 25.0, 25.0),
         ("Concrete f'c = 5.900 KSI", 5900 * 0.00689475729, 5900 * 0.00689475729),
         ("Concrete, 4000 psi", 27.579, 27.579),
+        ("4000-psi concrete", 27.579, 27.579),
         ("Concrete f'c = 40 MPa precast", 40.0, 40.0),
         ("fc' 35 MPa", 35.0, 35.0),
         ("35 N/mm2", 35.0, 35.0),

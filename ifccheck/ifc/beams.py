@@ -83,7 +83,7 @@ class BeamReader:
         self._tendons = Tendons(context, profiles)
         self._materials = Materials(context)
         self._strengths = Strengths(context)
-        self._type_names: dict[int, str] = {}
+        self._types: dict[int, tuple[str, str]] = {}
 
     @property
     def remarks(self) -> tuple[Remark, ...]:
@@ -154,12 +154,17 @@ class BeamReader:
         )
 
     def _type_name(self, step_id: int) -> str:
+        return self._type(step_id)[0]
+
+    def _type(self, step_id: int) -> tuple[str, str]:
+        """Name and predefined type of a beam's type; empty where it has none."""
         type_id = self._context.relations.type_of(step_id)
         if type_id is None:
-            return ""
-        if type_id not in self._type_names:
-            self._type_names[type_id] = text(self._context.file.by_id(type_id), "Name")
-        return self._type_names[type_id]
+            return "", ""
+        if type_id not in self._types:
+            entity = self._context.file.by_id(type_id)
+            self._types[type_id] = text(entity, "Name"), text(entity, "PredefinedType")
+        return self._types[type_id]
 
     def _hosts_bars(self, step_id: int) -> bool:
         by_id = self._context.file.by_id
@@ -186,7 +191,7 @@ class BeamReader:
         relations = self._context.relations
         if self._tendons.in_beam(step_id, box):
             doubts.reason("prestressed: the model holds tendons in it")
-        elif get(entity, "PredefinedType") == "HOLLOWCORE":
+        elif "HOLLOWCORE" in (get(entity, "PredefinedType"), self._type(step_id)[1]):
             doubts.reason("prestressed: a hollow-core unit")
         elif named := _first(speaks_of_prestress, _all_names(clues)):
             doubts.reason(f'prestressed: named so in "{named}"')

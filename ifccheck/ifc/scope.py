@@ -75,7 +75,7 @@ def _use(evidence: Iterable[Evidence], names: Iterable[str], concrete: bool) -> 
             if any(BEAM_WORDS.search(name) for name in names):
                 return Scope(doubt=f"named both a footing and a beam: {where}")
             return Scope(left_out=(use, where))
-        if use == "bearing":
+        if use == "bearing" and not BEAM_WORDS.search(where):
             if concrete:
                 return Scope(doubt=f"of concrete, yet named a bearing: {where}")
             return Scope(left_out=(use, where))

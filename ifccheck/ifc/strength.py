@@ -35,7 +35,7 @@ CYLINDER = re.compile(
     r"(?<![a-z])f['’`]?c['’`]?k?\s*[=:]?\s*(\d+(?:\.\d+)?)\s*(ksi|psi|mpa|n/mm)?", re.I
 )
 CUBE = re.compile(r"(?<![a-z])(?:fcu|rck|fck,? ?cube)\s*[=:]?\s*(\d+(?:\.\d+)?)", re.I)
-WITH_UNIT = re.compile(r"(?<![\w.])(\d+(?:\.\d+)?)\s*(ksi|psi|mpa|n/mm)", re.I)
+WITH_UNIT = re.compile(r"(?<![\w.])(\d+(?:\.\d+)?)[\s-]*(ksi|psi|mpa|n/mm)", re.I)
 SPANISH = re.compile(r"(?<![a-z])h[aplm]-? ?(\d{2,3})(?!\d)", re.I)
 AMBIGUOUS = re.compile(r"(?<![a-z])([bckm]) ?-?(\d{2})(?![\d/.]|\s*[x×])", re.I)
 BARE = re.compile(r"\s*(\d{2,3}(?:\.\d+)?)\s*$")
