@@ -20,6 +20,7 @@ from ifccheck.ifc.context import make_context
 from ifccheck.ifc.lexer import scan
 from ifccheck.ifc.reinforcement import read_reinforcement
 from ifccheck.ifc.step_table import make_step_table
+from ifccheck.ifc.swept_texts import read_swept_texts
 from tests.barred_beams import HEIGHT, LENGTH, Curve, ModelWithBars, bent, straight
 
 # CSA G30.18: nominal diameter [mm] and area [mm2], published
@@ -524,6 +525,10 @@ def test_following_many_statements_at_once_reads_the_same(unit: str) -> None:
     chains = list(follow_chains(statements, [product.id() for product in products]))
     assert chains[1] is None
     assert sum(chain is not None for chain in chains) > 4
+    solids = np.array([solid.id() for solid in model.file.by_type("IfcSweptDiskSolid")])
+    read = {item: path for item, path, _ in read_swept_texts(statements, solids, 1.0)}
+    assert len(read) == len(solids)
+    assert {len(path.arcs) for path in read.values()} == {0, 1}
     assert read_reinforcement(context, model.frames, {}, statements) == read_reinforcement(
         context, model.frames, {}
     )
@@ -532,3 +537,27 @@ def test_following_many_statements_at_once_reads_the_same(unit: str) -> None:
 def test_text_that_hides_what_it_is_is_not_followed() -> None:
     data = ModelWithBars().file.to_string().encode().replace(b"DATA;", b"DATA; /* #1=IFCX( */")
     assert make_step_table(data, scan(data)) is None
+
+
+@pytest.mark.parametrize(
+    "curve",
+    [
+        "IFCINDEXEDPOLYCURVE(#8,(IFCLINEINDEX((1,2)),IFCLINEINDEX((3,2))),.F.)",  # does not meet
+        "IFCINDEXEDPOLYCURVE(#8,(IFCLINEINDEX((1,4))),.F.)",  # has no fourth point
+        "IFCINDEXEDPOLYCURVE(#8,(IFCARCINDEX((1,2))),.F.)",  # is no arc
+        "IFCPOLYLINE((#8,#8))",
+    ],
+)
+def test_curves_that_are_not_plain_are_left_to_the_thorough_reader(curve: str) -> None:
+    text = (
+        "ISO-10303-21;HEADER;FILE_SCHEMA(('IFC4'));ENDSEC;DATA;"
+        "#5=IFCSWEPTDISKSOLID(#7,8.,$,$,$);#6=IFCSWEPTDISKSOLID(#9,8.,$,$,$);"
+        f"#7={curve};#9=IFCINDEXEDPOLYCURVE(#8,$,.F.);"
+        "#8=IFCCARTESIANPOINTLIST3D(((0.,0.,0.),(1.E3,0.,0.),(2000.,0.,-.5)));"
+        "ENDSEC;END-ISO-10303-21;"
+    ).encode()
+    statements = make_step_table(text, scan(text))
+    assert statements is not None
+    ((item, path, diameter),) = read_swept_texts(statements, np.array([5, 6]), 2.0)
+    assert (item, diameter) == (6, 32.0)
+    assert path.points == ((0.0, 0.0, 0.0), (2000.0, 0.0, 0.0), (4000.0, 0.0, -1.0))

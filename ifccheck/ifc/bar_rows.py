@@ -60,9 +60,13 @@ class BarPlaces:
         self.table = table
         self.frames = frames
         self.samples: Samples = sample(table.paths)
+        columns = np.array([(bar.size, bar.grade) for bar in table.bars], dtype=np.intp)
+        sizes, grades = columns.reshape(-1, 2).T
+        self.size: Ints = sizes[table.bar]
+        self.grade: Ints = grades[table.bar]
+        """Size and grade of each strand."""
         thick = np.array([size.diameter for size in table.sizes], dtype=float)
-        sizes = np.array([bar.size for bar in table.bars], dtype=np.intp)
-        self.diameter: Floats = thick[sizes][table.bar] if len(thick) else np.zeros(0)
+        self.diameter: Floats = thick[self.size]
 
     def label(self, strand: int) -> str:
         """What people call the bar of a strand."""

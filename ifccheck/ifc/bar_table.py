@@ -18,6 +18,7 @@ from ifccheck.ifc.context import Context
 from ifccheck.ifc.entity import Entity, UnreadableError
 from ifccheck.ifc.placements import IDENTITY, Matrix
 from ifccheck.ifc.step_table import StepTable
+from ifccheck.ifc.swept_texts import read_swept_texts
 
 NO_OFFSET = (0.0, 0.0, 0.0)
 
@@ -163,13 +164,24 @@ def gather_bars(
     unreadable: dict[int, str] = {}
     chains: Iterable[Chain | None] = repeat(None, len(products))
     if statements is not None:
-        chains = follow_chains(statements, [product.id() for product in products])
+        followed = list(follow_chains(statements, [product.id() for product in products]))
+        _read_swept(found, statements, followed, context.units.length)
+        chains = followed
     for product, chain in zip(products, chains, strict=True):
         try:
             found.add(product, chain)
         except UnreadableError as error:
             unreadable[product.id()] = str(error)
     return _within_reach(_table(found, unreadable, context.units.length))
+
+
+def _read_swept(
+    found: _Gathering, statements: StepTable, chains: Iterable[Chain | None], scale: float
+) -> None:
+    """Read the shapes of the plainest bars, each once."""
+    items = {chain.item for chain in chains if chain is not None and not chain.source}
+    for solid in read_swept_texts(statements, np.array(sorted(items), dtype=np.intp), scale):
+        found.shapes.add_swept(*solid)
 
 
 def _within_reach(table: BarTable) -> BarTable:

@@ -76,8 +76,8 @@ class Measured:
 
     def grade(self, row: int) -> Given | None:
         """Yield strength of the bar of a row."""
-        table = self.places.table
-        return table.grades[table.bars[int(self.bar[row])].grade].strength
+        grade = int(self.places.grade[self.rows.strand[row]])
+        return self.places.table.grades[grade].strength
 
     def remark(self, rows: Iterable[int], text: str) -> None:
         """Say something of the bars of rows."""
@@ -181,9 +181,10 @@ def _judge_others(model: Measured, is_main: Bools) -> None:
 
 def _judge_roles(model: Measured, mask: Bools, roles: frozenset[str], text: str) -> None:
     """Shape decides over role; where they contradict each other it is told."""
-    contradicted = [bar.role in roles for bar in model.places.table.bars]
-    contrary = np.array(contradicted, dtype=bool)[model.bar] & mask
-    model.remark(np.flatnonzero(contrary).tolist(), f"{text}: taken by its shape")
+    bars = model.places.table.bars
+    of_bars = model.bar.tolist()
+    contrary = [row for row in np.flatnonzero(mask).tolist() if bars[of_bars[row]].role in roles]
+    model.remark(contrary, f"{text}: taken by its shape")
 
 
 def _outside(model: Measured, anywhere: bool = False) -> Bools:
@@ -201,17 +202,16 @@ def _outside(model: Measured, anywhere: bool = False) -> Bools:
 
 def _judge_data(model: Measured, used: Bools) -> None:
     """Tell where the sources of size and grade disagree or could not be read."""
-    table = model.places.table
-    doubts = [(table.sizes[bar.size].doubt, table.grades[bar.grade].doubt) for bar in table.bars]
-    doubtful = np.array([bool(size or grade) for size, grade in doubts], dtype=bool)[model.bar]
-    for row in np.flatnonzero(doubtful & used).tolist():
-        bar = table.bars[int(model.bar[row])]
-        size, (size_doubt, grade_doubt) = table.sizes[bar.size], doubts[int(model.bar[row])]
-        if size_doubt:
-            taken = f"taken as {size.designation} of {size.area:.4g} mm2"
-            model.remark((row,), f"sizes differ ({size_doubt}): {taken}")
-        if grade_doubt:
-            model.remark((row,), grade_doubt)
+    table, strand = model.places.table, model.rows.strand
+    size_doubts = np.array([bool(size.doubt) for size in table.sizes], dtype=bool)
+    grade_doubts = np.array([bool(grade.doubt) for grade in table.grades], dtype=bool)
+    sizes, grades = model.places.size[strand], model.places.grade[strand]
+    for row in np.flatnonzero(used & size_doubts[sizes]).tolist():
+        size = table.sizes[int(sizes[row])]
+        taken = f"taken as {size.designation} of {size.area:.4g} mm2"
+        model.remark((row,), f"sizes differ ({size.doubt}): {taken}")
+    for row in np.flatnonzero(used & grade_doubts[grades]).tolist():
+        model.remark((row,), table.grades[int(grades[row])].doubt)
 
 
 def _longitudinal(model: Measured, runs: Runs) -> dict[int, tuple[Bars, ...]]:
@@ -238,9 +238,8 @@ def _longitudinal(model: Measured, runs: Runs) -> dict[int, tuple[Bars, ...]]:
 
 def _labels(model: Measured, runs: Runs, beam: Ints, steep: Bools) -> Ints:
     """Number the runs so that only those of one beam, size, grade and anchors have one number."""
-    table, bar = model.places.table, model.bar[runs.row]
-    sizes = np.array([one.size for one in table.bars], dtype=np.intp)[bar]
-    grades = np.array([one.grade for one in table.bars], dtype=np.intp)[bar]
+    table, strand = model.places.table, model.rows.strand[runs.row]
+    sizes, grades = model.places.size[strand], model.places.grade[strand]
     label = beam * len(table.sizes) + sizes
     label = label * len(table.grades) + grades
     return ((label * 2 + runs.start_hook) * 2 + runs.end_hook) * 2 + steep
@@ -291,15 +290,12 @@ def _bars(model: Measured, runs: Runs, members: Ints, start: float, end: float, 
 
 
 def _stirrups(model: Measured, legged: Ties) -> dict[int, tuple[Stirrups, ...]]:
-    table, bar = model.places.table, model.bar[legged.row]
-    areas = np.array([size.area for size in table.sizes], dtype=float)
-    sizes = np.array([one.size for one in table.bars], dtype=np.intp)[bar]
-    grades = np.array([one.grade for one in table.bars], dtype=np.intp)[bar]
-    beam = model.rows.beam[legged.row]
-    thick = model.places.diameter[model.rows.strand[legged.row]]
     if not len(legged.row):
         return {}
-    places, twice = gather_places(legged, beam, thick, areas[sizes], grades)
+    strand, beam = model.rows.strand[legged.row], model.rows.beam[legged.row]
+    areas = np.array([size.area for size in model.places.table.sizes], dtype=float)
+    thick, area = model.places.diameter[strand], areas[model.places.size[strand]]
+    places, twice = gather_places(legged, beam, thick, area, model.places.grade[strand])
     model.remark(legged.row[twice].tolist(), "modelled twice, counted once")
     return {key: tuple(zones) for key, zones in _zones(model, places)}
 
@@ -327,7 +323,7 @@ def _zones(model: Measured, places: Places) -> Iterator[tuple[int, list[Stirrups
 def _zone_stirrups(model: Measured, places: Places, whole: Ints, beam: int, zone: Zone) -> Stirrups:
     held = whole[zone.first : zone.last + 1]
     least = int(held[places.area[held].argmin()])
-    ties = [tie for place in held.tolist() for tie in places.ties_of(place, place)]
+    ties = places.ties_among(held)
     legs = int(places.legs[least])
     bar = model.places.table.bars[int(model.bar[places.ties_of(least, least)[0]])]
     return Stirrups(

@@ -99,23 +99,25 @@ class StepTable:
         count = np.bincount(owner, minlength=len(rows))
         return References(count, ids, np.concatenate(([0], np.cumsum(count)))[:-1])
 
+    def texts(self, rows: Ints) -> list[bytes]:
+        """The statements themselves; empty for a row of -1."""
+        stops = np.where(rows >= 0, self._stops[rows], self._starts[rows])
+        bounds = zip(self._starts[rows].tolist(), stops.tolist(), strict=True)
+        return [self._data[start:stop] for start, stop in bounds]
+
     def coordinates(self, rows: Ints) -> Floats:
         """Coordinates of points, written as ``((1.,2.,3.))``; nan for those of other form."""
         found = np.full((len(rows), 3), np.nan)
-        texts = [
-            self._data[start:stop].partition(b"((")[2].partition(b"))")[0]
-            for start, stop in zip(
-                self._starts[rows].tolist(), self._stops[rows].tolist(), strict=True
-            )
-        ]
+        texts = [text.partition(b"((")[2].partition(b"))")[0] for text in self.texts(rows)]
         spatial = [row for row, text in enumerate(texts) if text.count(b",") == 2]
         if spatial:
             numbers = b",".join(texts[row] for row in spatial).split(b",")
-            found[spatial] = _floats(numbers).reshape(-1, 3)
+            found[spatial] = read_floats(numbers).reshape(-1, 3)
         return found
 
 
-def _floats(texts: list[bytes]) -> npt.NDArray[np.float64]:
+def read_floats(texts: list[bytes]) -> npt.NDArray[np.float64]:
+    """Read numbers, all of them nan where one is none."""
     try:
         return np.array(texts).astype(np.float64)
     except ValueError:  # something else than numbers: leave them all to ifcopenshell

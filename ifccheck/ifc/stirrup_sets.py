@@ -143,6 +143,13 @@ class Places:
         found: list[int] = self.ties[self.first_tie[first] : self.first_tie[last + 1]].tolist()
         return found
 
+    def ties_among(self, held: Ints) -> list[int]:
+        """The ties of places in order."""
+        first, last = int(held[0]), int(held[-1])
+        if last - first == len(held) - 1:
+            return self.ties_of(first, last)
+        return [tie for place in held.tolist() for tie in self.ties_of(place, place)]
+
     def steel(self) -> Ints:
         """A number for each place, the same where legs, area, steel and form are the same."""
         area = np.rint(np.log(np.maximum(self.area, 1e-3)) / SAME_STEEL).astype(np.intp)
