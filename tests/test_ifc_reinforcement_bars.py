@@ -15,8 +15,9 @@ import pytest
 
 from ifccheck.beam import Anchor
 from ifccheck.ifc.bar_chains import follow_chains
-from ifccheck.ifc.bar_paths import Path, path_length, sample
+from ifccheck.ifc.bar_paths import Path, path_length, rounded, sample
 from ifccheck.ifc.context import make_context
+from ifccheck.ifc.entity import UnreadableError
 from ifccheck.ifc.lexer import scan
 from ifccheck.ifc.reinforcement import read_reinforcement
 from ifccheck.ifc.step_table import make_step_table
@@ -151,6 +152,32 @@ def test_a_corner_drawn_sharp_gives_its_bend_from_the_tail(tail: float, anchor: 
     model.bars(beam, sharp, diameter=20.0)
     (bars,) = model.read(beam).bars
     assert bars.start_anchor is anchor
+
+
+@pytest.mark.parametrize(("radius", "anchor"), [(60.0, Anchor.HOOK), (70.0, Anchor.STRAIGHT)])
+def test_a_polygonal_solid_has_bends_of_its_radius(radius: float, anchor: Anchor) -> None:
+    """A tail of 305 mm from the corner keeps 245 or 235 mm: 12 diameters of 20 are 240 mm."""
+    model = ModelWithBars()
+    beam = model.beam()
+    corners = ((100.0, 0.0, 365.0), (100.0, 0.0, 60.0), (5900.0, 0.0, 60.0))
+    line = model.file.create_entity("IfcPolyline", [model.point(corner) for corner in corners])
+    solid = model.file.create_entity(
+        "IfcSweptDiskSolidPolygonal", line, 10.0, None, None, None, radius
+    )
+    model.aggregate(beam, [model.bar([solid], 20.0, beam)])
+    (bars,) = model.read(beam).bars
+    assert bars.start_anchor is anchor
+    assert bars.start == pytest.approx(90.0 if anchor is Anchor.HOOK else 100.0 + radius)
+
+
+def test_rounding_a_polyline_is_rounding_its_corners() -> None:
+    corners = ((0.0, 0.0, 0.0), (300.0, 0.0, 0.0), (300.0, 400.0, 0.0), (500.0, 400.0, 150.0))
+    expected = bent(corners, 40.0)
+    made = rounded(Path(corners), 40.0)
+    assert made.arcs == expected.arcs
+    assert np.array(made.points) == pytest.approx(np.array(expected.points))
+    with pytest.raises(UnreadableError, match="too wide"):
+        rounded(Path(corners), 500.0)
 
 
 def test_the_legs_of_a_hairpin_hook_round_each_other() -> None:

@@ -25,6 +25,8 @@ CHORD_ANGLE = math.pi / 7.0
 """Greatest angle [rad] that one chord of a sampled arc spans."""
 LONGEST_ARC = 1.9 * math.pi
 """Greatest angle [rad] that three points describe well."""
+STRAIGHT_ON = 1e-4
+"""Half of the turn [rad] below which a polyline has no corner."""
 PARAMETER_TOLERANCE = 1e-4
 """Relative difference within which a trimming parameter means the end of the curve."""
 
@@ -66,6 +68,35 @@ def read_swept_path(
     if path.arcs or not curve.is_a("IfcPolyline"):
         raise UnreadableError(f"{label(curve)} is swept over a part only, which is not read")
     return _cut(path, first, len(path.points) - 1.0 if last is None else last, label(curve))
+
+
+def rounded(path: Path, radius: float) -> Path:
+    """Round the inner corners of a polyline to a radius of the centre line [mm].
+
+    Raises UnreadableError where its pieces are too short for that.
+    """
+    corners = [np.array(point) for point in path.points]
+    points, arcs = [corners[0]], []
+    for before, corner, after in zip(corners, corners[1:], corners[2:], strict=False):
+        back, on = before - corner, after - corner
+        back, on = back / max(_norm(back), 1e-9), on / max(_norm(on), 1e-9)
+        half = math.acos(min(max(float(back @ on), -1.0), 1.0)) / 2.0
+        if half > math.pi / 2.0 - STRAIGHT_ON:
+            points.append(corner)
+            continue
+        tangent = radius / max(math.tan(half), 1e-9)
+        if tangent > _norm(points[-1] - corner) or tangent > _norm(after - corner):
+            raise UnreadableError("has bends too wide for its pieces")
+        inward = (back + on) / _norm(back + on)
+        arcs.append(len(points))
+        middle = corner + inward * radius * (1.0 / math.sin(half) - 1.0)
+        points += [corner + back * tangent, middle, corner + on * tangent]
+    points.append(corners[-1])
+    return Path(tuple((float(x), float(y), float(z)) for x, y, z in points), tuple(arcs))
+
+
+def _norm(vector: Floats) -> float:
+    return math.sqrt(float(vector @ vector))
 
 
 def _is_whole(curve: Entity, path: Path, end: float, units: ModelUnits) -> bool:

@@ -9,7 +9,7 @@ from typing import Any
 
 import numpy as np
 
-from ifccheck.ifc.bar_paths import Path, read_path, read_swept_path
+from ifccheck.ifc.bar_paths import Path, read_path, read_swept_path, rounded
 from ifccheck.ifc.entity import Entity, UnreadableError, get
 from ifccheck.ifc.placements import IDENTITY, Matrix, Placements, unit
 from ifccheck.ifc.units import ModelUnits
@@ -113,6 +113,8 @@ class BarShapes:
         if kind in ("IfcSweptDiskSolid", "IfcSweptDiskSolidPolygonal"):
             argument = item.get_argument
             path = read_swept_path(argument(0), argument(3), argument(4), self._units)
+            if kind == "IfcSweptDiskSolidPolygonal" and argument(5):
+                path = rounded(path, argument(5) * self._units.length)
             return self._strand(path, IDENTITY, 2.0 * argument(1) * self._units.length)
         if kind == "IfcExtrudedAreaSolid":
             return self._extruded(item)
