@@ -1,0 +1,560 @@
+"""The rules that keep a doubtful beam from being called adequate, through the whole program.
+
+Each test holds a beam that a broken rule would call adequate, and its sound twin that is.
+"""
+
+from __future__ import annotations
+
+import csv
+import io
+import json
+import math
+import re
+from collections.abc import Mapping
+from dataclasses import replace
+from html.parser import HTMLParser
+from pathlib import Path
+from typing import Any
+
+import pytest
+from rich.console import Console
+
+from ifccheck import pipeline
+from ifccheck.beam import Verdict
+from ifccheck.errors import BriefError
+from ifccheck.publish.csv import ratings_csv
+from ifccheck.publish.html import render
+from ifccheck.publish.json import ratings_json
+from ifccheck.publish.property_sets import result_sets
+from ifccheck.publish.report import Report
+from ifccheck.publish.terminal import closing_table, sheet_text
+from ifccheck.rating import Rating
+from tests.step_halls import DEFAULTS, LOAD, NOTATION, Bar, Beam, Block, brief, guid_of, hall, write
+
+SOUND = hall(Beam())
+
+
+def report_on(folder: Path, model: str, *entries: str, text: str = "") -> Report:
+    """Rate a model by a brief with these entries, or with a load of 10 kN/m on every beam."""
+    model_path, brief_path = write(folder, model, text or brief(*entries))
+    return pipeline.rate([model_path], brief_path).reports[0]
+
+
+def rating_of(report: Report, mark: str = "B-1") -> Rating:
+    return next(report.ratings[beam.key] for beam in report.model.beams if beam.mark == mark)
+
+
+def rated(folder: Path, model: str, *entries: str, text: str = "") -> Rating:
+    """What the program says of beam B-1."""
+    return rating_of(report_on(folder, model, *entries, text=text))
+
+
+def check_adequate(rating: Rating) -> None:
+    assert rating.verdict is Verdict.ADEQUATE, [reason.text for reason in rating.reasons]
+    assert rating.utilisation <= 1.0
+
+
+def check_not_rated(rating: Rating, why: str) -> None:
+    assert rating.verdict is Verdict.NOT_RATED, rating.utilisation
+    assert math.isnan(rating.utilisation)
+    assert why in "; ".join(reason.text for reason in rating.reasons)
+
+
+def load(text: str, case: str = "floor", beams: str = "B-*") -> str:
+    return f'[[loads]]\ncase = "{case}"\nbeams = ["{beams}"]\n{text}\n'
+
+
+def stated(table: str, text: str, beams: str = "B-1") -> str:
+    return f'[[{table}]]\nbeams = ["{beams}"]\n{text}\n'
+
+
+def changed(text: str, old: str, new: str) -> str:
+    assert old in text
+    return text.replace(old, new, 1)
+
+
+def with_lines(model: str, *instances: str) -> str:
+    """A model with further instances, #9001 and on, before its end."""
+    lines = "".join(f"#{9001 + n}={text};\n" for n, text in enumerate(instances))
+    return changed(model, "ENDSEC;\nEND-ISO", f"{lines}ENDSEC;\nEND-ISO")
+
+
+def number_of(model: str, instance: str) -> str:
+    """The number of the first instance that begins so."""
+    found = re.search(rf"#(\d+)={re.escape(instance)}", model)
+    assert found
+    return found[1]
+
+
+def test_the_sound_twin_of_all_is_adequate(tmp_path: Path) -> None:
+    check_adequate(rated(tmp_path, SOUND))
+
+
+# Loads -------------------------------------------------------------------------------------------
+
+
+def test_no_load_but_self_weight(tmp_path: Path) -> None:
+    other = hall(Beam(), Beam("D-2", at=(0.0, 9000.0, 3000.0)))
+    elsewhere = load('line = "10 kN/m"', beams="D-2")
+    check_not_rated(rated(tmp_path, other, elsewhere), "no load assigned")
+    check_adequate(rated(tmp_path, other, elsewhere, stated("beams", "unloaded = true")))
+
+
+def test_unloaded_does_not_hide_a_load(tmp_path: Path) -> None:
+    heavy = load('line = "90 kN/m"')
+    rating = rated(tmp_path, SOUND, heavy, stated("beams", "unloaded = true"))
+    assert rating.verdict is Verdict.FALLS_SHORT
+
+
+def test_a_mistyped_mark_among_good_ones_loses_no_load(tmp_path: Path) -> None:
+    text = changed(LOAD, '"B-*"', '"B-1", "B-l"')
+    with pytest.raises(BriefError, match="'B-l' reaches no beam"):
+        rated(tmp_path, SOUND, text)
+    check_adequate(rated(tmp_path, SOUND, text + "optional = true\n"))
+
+
+ON_TOP = Beam("R-1", at=(3000.0, -2000.0, 3600.0), along=(0.0, 1.0, 0.0), length=4000.0,
+              columns=False)  # fmt: skip
+RESTING: Mapping[str, str] = {
+    "a beam on top": hall(Beam(), ON_TOP),
+    "a beam that frames into its side": hall(
+        Beam(), Beam("R-1", at=(3000.0, 150.0, 3100.0), along=(0.0, 1.0, 0.0), depth=500.0,
+                     length=4000.0, columns=False),
+    ),
+    "a column on top": hall(Beam(), others=[Block("C-9", (3000.0, 0.0, 3600.0), (300, 300), 3000)]),
+    "a column on top near an end": hall(
+        Beam(), others=[Block("C-9", (1300.0, 0.0, 3600.0), (300, 300), 3000)]
+    ),
+    "a steel beam on top": hall(
+        Beam(),
+        Beam("R-1", at=(3000.0, -2000.0, 3600.0), along=(0.0, 1.0, 0.0), length=4000.0,
+             material="Structural steel S355", notation=None, columns=False),
+    ),
+    "a beam that hangs below it": hall(
+        Beam(), others=[Block("H-9", (3000.0, 0.0, 1500.0), (200, 200), 1500, kind="IFCMEMBER")]
+    ),
+}  # fmt: skip
+
+
+@pytest.mark.parametrize("kind", [kind for kind in RESTING if "hangs" not in kind])
+def test_what_rests_between_the_supports(tmp_path: Path, kind: str) -> None:
+    check_not_rated(rated(tmp_path, RESTING[kind]), "reactions not included: ")
+    complete = stated("beams", "loads_complete = true")
+    check_adequate(rated(tmp_path, RESTING[kind], LOAD, complete))
+
+
+def test_what_touches_it_from_below_between_its_ends(tmp_path: Path) -> None:
+    """A hanger or a prop: it may pull or bear, and either way the single span is not known."""
+    hung = RESTING["a beam that hangs below it"]
+    check_not_rated(rated(tmp_path, hung), "supports unknown")
+
+
+def test_what_touches_the_tip_of_a_cantilever(tmp_path: Path) -> None:
+    cantilever = Beam(notation={**NOTATION, "TopBars": "6-25M"}, length=3000.0, columns=False)
+    fixed = stated("supports", 'start = "fixed"\nend = "free"')
+    light = load('line = "2 kN/m"')
+    tip = Block("C-9", (2850.0, 0.0, 3600.0), (300, 300), 3000)
+    held = [Block("W-1", (-150.0, 0.0, 0.0), (300, 3000), 6000, kind="IFCWALL")]
+    check_adequate(rated(tmp_path, hall(cantilever, others=held), light, fixed))
+    loaded = hall(cantilever, others=[*held, tip])
+    check_not_rated(rated(tmp_path, loaded, light, fixed), "reactions not included: C-9")
+
+
+@pytest.mark.parametrize("how", ["torsion", "eccentricity"])
+def test_torsion(tmp_path: Path, how: str) -> None:
+    if how == "torsion":
+        twisted = rated(tmp_path, SOUND, LOAD, stated("beams", "torsion = true"))
+    else:
+        twisted = rated(tmp_path, SOUND, LOAD + 'eccentricity = "200 mm"\n')
+    check_not_rated(twisted, "torsion")
+    straight = rated(tmp_path, SOUND, LOAD + 'eccentricity = "0 mm"\n')
+    check_adequate(straight)
+    assert any("through the web" in remark.text for remark in straight.remarks)
+
+
+def test_a_hung_load(tmp_path: Path) -> None:
+    check_not_rated(rated(tmp_path, SOUND, LOAD + 'face = "bottom"\n'), "hung load")
+    check_adequate(rated(tmp_path, SOUND, LOAD + 'face = "top"\n'))
+
+
+# Supports ----------------------------------------------------------------------------------------
+
+
+def test_an_end_that_touches_nothing(tmp_path: Path) -> None:
+    loose = hall(Beam(columns=False))
+    check_not_rated(rated(tmp_path, loose), "supports unknown: its start touches no member")
+    pinned = stated("supports", 'start = "pinned"\nend = "pinned"')
+    check_adequate(rated(tmp_path, loose, LOAD, pinned))
+
+
+def test_one_end_that_touches_nothing(tmp_path: Path) -> None:
+    column = Block("C-1", (150.0, 0.0, 0.0), (300, 300), 3000)
+    overhanging = hall(Beam(columns=False), others=[column])
+    check_not_rated(rated(tmp_path, overhanging), "supports unknown: its end touches no member")
+
+
+def test_an_end_on_which_something_merely_stands(tmp_path: Path) -> None:
+    column = Block("C-1", (150.0, 0.0, 0.0), (300, 300), 3000)
+    above = Block("C-2", (5850.0, 0.0, 3600.0), (300, 300), 3000)
+    standing = hall(Beam(columns=False), others=[column, above])
+    check_not_rated(rated(tmp_path, standing), "supports unknown: its end touches no member")
+
+
+def test_ends_of_which_the_brief_does_not_speak(tmp_path: Path) -> None:
+    silent = brief(defaults=changed(DEFAULTS, 'supports = ["pinned", "pinned"]\n', ""))
+    check_not_rated(rated(tmp_path, SOUND, text=silent), "supports unknown")
+
+
+def test_a_support_away_from_the_ends(tmp_path: Path) -> None:
+    """A wall below the middle makes two spans and hogs the beam over it."""
+    wall = hall(Beam(), others=[Block("W-1", (3000.0, 0.0, 0.0), (300, 300), 3000, kind="IFCWALL")])
+    check_not_rated(rated(tmp_path, wall), "supports unknown")
+    pinned = stated("supports", 'start = "pinned"\nend = "pinned"')
+    check_adequate(rated(tmp_path, wall, LOAD, pinned))
+
+
+def test_the_later_of_two_entries_wins_and_says_so(tmp_path: Path) -> None:
+    """60 kN/m: too much for a pinned beam, not for a fixed one of its top bars."""
+    model = hall(Beam(notation={**NOTATION, "TopBars": "3-25M"}))
+    heavy = load('line = "36 kN/m"')
+    fixed = stated("supports", 'start = "fixed"\nend = "fixed"')
+    pinned = stated("supports", 'start = "pinned"\nend = "pinned"')
+    check_adequate(rated(tmp_path, model, heavy, pinned, fixed))
+    last = rated(tmp_path, model, heavy, fixed, pinned)
+    assert last.verdict is Verdict.FALLS_SHORT
+    texts = [remark.text for remark in last.remarks]
+    assert any("supports[2] replaces" in text and "supports[1]" in text for text in texts)
+
+
+def test_a_stated_span_much_shorter_than_the_beam(tmp_path: Path) -> None:
+    heavy = load('line = "60 kN/m"')
+    short = rated(tmp_path, SOUND, LOAD, stated("beams", 'span = "3.6 m"'))
+    check_not_rated(short, "beyond its supports")
+    assert rated(tmp_path, SOUND, heavy).verdict is Verdict.FALLS_SHORT
+    check_adequate(rated(tmp_path, SOUND, LOAD, stated("beams", 'span = "5.7 m"')))
+
+
+def test_an_end_that_frames_into_the_side_of_a_girder(tmp_path: Path) -> None:
+    """Its reaction does not compress it: shear counts at the face and not at dv from it."""
+    supply = {**NOTATION, "BottomBars": "5-25M", "Stirrups": "2 legs 10M @ 310"}
+    beam = Beam(width=350.0, length=3600.0, notation=supply)
+    girders = [
+        Beam(f"G-{n}", at=(x, -3000.0, 2900.0), along=(0.0, 1.0, 0.0), depth=700.0, columns=False)
+        for n, x in enumerate((-150.0, 3750.0))
+    ]
+    loose = replace(beam, columns=False)
+    heavy = load('line = "110 kN/m"')
+    on_columns = rated(tmp_path, hall(beam), heavy)
+    on_girders = rated(tmp_path, hall(loose, *girders), heavy)
+    check_adequate(on_columns)
+    assert on_girders.verdict is Verdict.FALLS_SHORT
+    assert on_girders.governing is not None
+    assert on_girders.governing.name == "Shear"
+    assert min(on_girders.governing.position, 3600.0 - on_girders.governing.position) < 1.0
+
+
+# Reinforcement -----------------------------------------------------------------------------------
+
+
+def noted(**notation: str) -> str:
+    return hall(Beam(notation={**NOTATION, **notation}))
+
+
+def test_legs_that_nobody_states(tmp_path: Path) -> None:
+    check_not_rated(rated(tmp_path, noted(Stirrups="10M @ 200")), "legs of the stirrups")
+    check_adequate(rated(tmp_path, noted(Stirrups="2 legs 10M @ 200")))
+
+
+def test_stirrups_of_which_nobody_speaks(tmp_path: Path) -> None:
+    silent = {name: text for name, text in NOTATION.items() if name != "Stirrups"}
+    check_not_rated(rated(tmp_path, hall(Beam(notation=silent))), "whether there are stirrups")
+
+
+@pytest.mark.parametrize("text", ["3-25Q", "3 bars", "25M"])
+def test_reinforcement_that_cannot_be_read(tmp_path: Path, text: str) -> None:
+    check_not_rated(rated(tmp_path, noted(BottomBars=text)), "cannot be read")
+
+
+def test_a_tensioned_face_of_which_nobody_speaks(tmp_path: Path) -> None:
+    silent = {name: text for name, text in NOTATION.items() if name != "BottomBars"}
+    check_not_rated(rated(tmp_path, hall(Beam(notation=silent))), "bottom are not stated")
+
+
+def test_no_reinforcement_at_all(tmp_path: Path) -> None:
+    check_not_rated(rated(tmp_path, hall(Beam(notation=None))), "reinforcement")
+
+
+BEARINGS = stated("supports", 'bearing = ["300 mm", "300 mm"]')
+
+
+def barred(*bars: Bar) -> str:
+    return hall(Beam(notation=None, bars=bars))
+
+
+def row(z: float = 62.0, **ends: float) -> list[Bar]:
+    """Four bars of 25M, from end to end unless told otherwise."""
+    start, end = ends.get("start", 40.0), ends.get("end", 5960.0)
+    return [Bar(start, end, y, z) for y in (-90.0, -30.0, 30.0, 90.0)]
+
+
+def test_bars_outside_the_outline(tmp_path: Path) -> None:
+    """A row that hangs below the soffit is not counted, and no one knows what it is."""
+    light = load('line = "1 kN/m"')
+    check_adequate(rated(tmp_path, barred(*row()), light, BEARINGS))
+    hanging = barred(*row(), *row(z=-60.0))
+    check_not_rated(rated(tmp_path, hanging, light, BEARINGS), "outside")
+
+
+def test_bars_that_stop_short(tmp_path: Path) -> None:
+    """A bar's stress falls to nothing at its end: what stops at the quarter points leaves the
+    rest of the span without steel."""
+    light = load('line = "1 kN/m"')
+    check_adequate(rated(tmp_path, barred(*row()), light, BEARINGS))
+    cut = rated(tmp_path, barred(*row(start=1500.0, end=4500.0)), light, BEARINGS)
+    assert cut.verdict is Verdict.FALLS_SHORT
+    assert math.isinf(cut.utilisation)
+
+
+def test_bars_count_by_the_smallest_diameter_that_is_credible(tmp_path: Path) -> None:
+    """Attributes say 25M (500 mm2), the swept body 16 mm (200 mm2): the body counts."""
+    thick = barred(*row())
+    thin = thick.replace("12.6,$,$,$", "8.0,$,$,$")
+    heavy = load('line = "23 kN/m"')
+    held = stated("supports", 'bearing = ["600 mm", "600 mm"]')
+    check_adequate(rated(tmp_path, thick, heavy, held))
+    assert rated(tmp_path, thin, heavy, held).verdict is Verdict.FALLS_SHORT
+
+
+# Concrete, bodies and scope ----------------------------------------------------------------------
+
+
+@pytest.mark.parametrize("material", ["Finish by others", ""])
+def test_unknown_material(tmp_path: Path, material: str) -> None:
+    """Not rated, though the brief knows a strength, and never out of scope."""
+    known = brief(defaults=DEFAULTS + 'concrete_strength = "30 MPa"\n')
+    report = report_on(tmp_path, hall(Beam(material=material)), text=known)
+    check_not_rated(rating_of(report), "material unknown")
+    assert report.model.out_of_scope == ()
+    check_adequate(rated(tmp_path, hall(Beam(material="Concrete")), text=known))
+
+
+@pytest.mark.parametrize("material", ["Structural steel S355", "Timber GL24h"])
+def test_out_of_scope_on_positive_evidence_alone(tmp_path: Path, material: str) -> None:
+    other = Beam("B-2", at=(0.0, 9000.0, 3000.0), material=material, notation=None)
+    report = report_on(tmp_path, hall(Beam(), other))
+    assert [beam.mark for beam in report.model.beams] == ["B-1"]
+    assert [left.name for left in report.model.out_of_scope] == ["B-2"]
+    assert report.model.out_of_scope[0].evidence
+
+
+def test_contradictory_material(tmp_path: Path) -> None:
+    """Timber by its material, concrete by the bars in it: in scope, and not rated."""
+    strange = hall(Beam(material="Timber GL24h", notation=None, bars=row()))
+    check_not_rated(rated(tmp_path, strange), "material contradictory")
+
+
+def test_the_smaller_of_two_strengths(tmp_path: Path) -> None:
+    """C50/60 by the material, C20/25 by the beam's own class: the least of both, with a remark."""
+    strong = hall(Beam(material="Concrete C50/60", notation={**NOTATION, "BottomBars": "5-25M"}))
+    beam = number_of(strong, "IFCBEAM")
+    both = with_lines(
+        strong,
+        "IFCPROPERTYSINGLEVALUE('StrengthClass',$,IFCLABEL('C20/25'),$)",
+        f"IFCPROPERTYSET('{guid_of('p')}',$,'Pset_ConcreteElementGeneral',$,(#9001))",
+        f"IFCRELDEFINESBYPROPERTIES('{guid_of('q')}',$,$,$,(#{beam}),#9002)",
+    )
+    heavy = load('line = "52 kN/m"')
+    alone, disputed = rated(tmp_path, strong, heavy), rated(tmp_path, both, heavy)
+    check_adequate(alone)
+    assert strength_of(alone) == pytest.approx(50.0)
+    assert strength_of(disputed) == pytest.approx(20.0)
+    assert disputed.verdict is Verdict.FALLS_SHORT
+    assert any("C50/60" in r.text or "50" in r.text for r in disputed.remarks)
+
+
+def strength_of(rating: Rating) -> Any:
+    return next(item.value for item in rating.basis if item.name == "ConcreteStrength")
+
+
+def opening(model: str) -> str:
+    beam = number_of(model, "IFCBEAM")
+    return with_lines(
+        model,
+        f"IFCOPENINGELEMENT('{guid_of('o')}',$,'Duct',$,$,$,$,$,.OPENING.)",
+        f"IFCRELVOIDSELEMENT('{guid_of('v')}',$,$,$,#{beam},#9001)",
+    )
+
+
+def tendon(model: str) -> str:
+    beam = number_of(model, "IFCBEAM")
+    return with_lines(
+        model,
+        f"IFCTENDON('{guid_of('t')}',$,'T-1',$,$,$,$,$,$,.STRAND.,15.2,140.,$,$,$,$,$)",
+        f"IFCRELAGGREGATES('{guid_of('a')}',$,$,$,#{beam},(#9001))",
+    )
+
+
+def notched(model: str) -> str:
+    """Half of the depth cut away along the beam."""
+    solid = number_of(model, "IFCEXTRUDEDAREASOLID")
+    cut = with_lines(
+        model.replace(f"({'#' + solid}))", "(#9005))", 1),
+        "IFCCARTESIANPOINT((0.0,0.0,300.0))",
+        "IFCAXIS2PLACEMENT3D(#9001,$,$)",
+        "IFCPLANE(#9002)",
+        "IFCHALFSPACESOLID(#9003,.F.)",
+        f"IFCBOOLEANCLIPPINGRESULT(.DIFFERENCE.,#{solid},#9004)",
+    )
+    assert cut.count("#9005") == 2
+    return cut
+
+
+def faceted(model: str) -> str:
+    return re.sub(r"IFCEXTRUDEDAREASOLID\(.*?\);", "IFCFACETEDBREP($);", model, count=1)
+
+
+BODIES: Mapping[str, tuple[str, str]] = {
+    "opening": (opening(SOUND), "1 opening not read yet"),
+    "tendon": (tendon(SOUND), "prestressed"),
+    "notch along the beam": (notched(SOUND), "not read yet"),
+    "Brep": (faceted(SOUND), "faceted Brep"),
+}
+
+
+@pytest.mark.parametrize("kind", BODIES)
+def test_bodies_that_are_not_read_yet(tmp_path: Path, kind: str) -> None:
+    model, why = BODIES[kind]
+    check_not_rated(rated(tmp_path, model), why)
+
+
+def test_a_member_that_stands(tmp_path: Path) -> None:
+    """Its own z lies along X, so that what was its length stands upright."""
+    model = hall(Beam(columns=False))
+    axes = number_of(model, "IFCLOCALPLACEMENT")
+    upright = re.sub(
+        rf"(#{axes}=IFCLOCALPLACEMENT\(\$,)#\d+\)", r"\g<1>#9004)", model, count=1
+    )  # fmt: skip
+    upright = with_lines(
+        upright,
+        "IFCCARTESIANPOINT((0.0,0.0,3000.0))",
+        "IFCDIRECTION((1.0,0.0,0.0))",
+        "IFCDIRECTION((0.0,0.0,1.0))",
+        "IFCAXIS2PLACEMENT3D(#9001,#9002,#9003)",
+    )
+    pinned = stated("supports", 'start = "pinned"\nend = "pinned"')
+    check_adequate(rated(tmp_path, model, LOAD, pinned))
+    check_not_rated(rated(tmp_path, upright, LOAD, pinned), "vertical member")
+
+
+# The rated case over the model -------------------------------------------------------------------
+
+
+def test_one_unrated_beam_in_its_path_leaves_a_case_not_rated(tmp_path: Path) -> None:
+    press = load('point = "40 kN"\nat = "50 %"', case="press")
+    other = Beam("B-2", at=(0.0, 9000.0, 3000.0))
+    sound = report_on(tmp_path, hall(Beam(), other), LOAD, press).cases[0]
+    assert sound.factor > 1.0
+    doubtful = replace(other, notation={**NOTATION, "Stirrups": "10M @ 200"})
+    report = report_on(tmp_path, hall(Beam(), doubtful), LOAD, press)
+    check_adequate(rating_of(report, "B-1"))
+    (case,) = report.cases
+    assert math.isnan(case.factor)
+    assert case.governing_beam is None
+    assert len(case.unrated_in_path) == 1
+    assert "not rated" in case.text
+    beside = report_on(tmp_path, hall(Beam(), doubtful), LOAD, press.replace("B-*", "B-1"))
+    assert beside.cases[0].factor == pytest.approx(sound.factor, rel=1e-6)
+
+
+def test_a_case_on_a_beam_without_a_body_is_not_rated(tmp_path: Path) -> None:
+    """The load on a beam that could not be read at all is not lost from the case's path."""
+    press = load('point = "40 kN"\nat = "50 %"', case="press")
+    other = Beam("B-2", at=(0.0, 9000.0, 3000.0))
+    model = hall(other, Beam())
+    (case,) = report_on(tmp_path, faceted(model), LOAD, press).cases
+    assert math.isnan(case.factor)
+
+
+# Words -------------------------------------------------------------------------------------------
+
+
+class _Texts(HTMLParser):
+    """The texts of a page, one for each element's stretch of text."""
+
+    def __init__(self) -> None:
+        super().__init__()
+        self.texts: list[str] = []
+        self.hidden = False
+
+    def handle_starttag(self, tag: str, attrs: Any) -> None:
+        self.hidden = tag in ("style", "script")
+
+    def handle_endtag(self, tag: str) -> None:
+        self.hidden = False
+
+    def handle_data(self, data: str) -> None:
+        if not self.hidden and data.strip():
+            self.texts.append(data.strip())
+
+
+def printed(report: Report) -> dict[str, list[str]]:
+    """Every text that each output shows, cell by cell or line by line."""
+    page = _Texts()
+    page.feed(render(report))
+    stream = io.StringIO()
+    console = Console(file=stream, width=200, color_system=None)
+    closing_table(report, console)
+    for beam in report.model.beams:
+        console.print(sheet_text(report.sheet(beam.key)))
+    cells = [cell for row in csv.reader(io.StringIO(ratings_csv(report))) for cell in row]
+    return {"html": page.texts, "terminal": stream.getvalue().splitlines(), "csv": cells}
+
+
+def test_a_utilisation_just_above_1_is_never_printed_as_1(tmp_path: Path) -> None:
+    """Scaled by its own rating factor and 3e-8 more, so that it exceeds 1 by next to nothing."""
+    text = 'point = "{!r} kN"\nat = "50 %"'
+    first = rated(tmp_path, SOUND, load(text.format(40.0), case="press"))
+    k = first.safe_loads[0].factor
+    report = report_on(
+        tmp_path, SOUND, load(text.format(40.0 * k * (1.0 + 3e-7)), case="press")
+    )  # fmt: skip
+    rating = rating_of(report)
+    assert rating.verdict is Verdict.FALLS_SHORT
+    assert 1.0 < rating.utilisation < 1.000001
+    for output, texts in printed(report).items():
+        assert any("falls short" in text for text in texts), output
+        ones = [t for t in texts if re.search(r"utilisation *1(\.0+)?(?![\d.])", t)]
+        assert not [t for t in texts if re.fullmatch(r"1(\.0+)?", t) and "." in t], output
+        assert not ones, output
+
+
+def test_where_adequate_is_shown_so_is_what_it_covers(tmp_path: Path) -> None:
+    report = report_on(tmp_path, SOUND)
+    check_adequate(rating_of(report))
+    covered = "adequate in flexure, shear"
+    texts = printed(report)
+    for output in ("html", "terminal"):
+        shown = [n for n, t in enumerate(texts[output]) if re.search(r"(?<![a-z])adequate", t)]
+        assert len(shown) > 2, output
+        for n in shown:  # a count or a choice may stand by itself, once, where the next text tells
+            alone = covered not in texts[output][n]
+            assert not alone or told_nearby(texts[output], n, covered), (output, texts[output][n])
+    table = list(csv.DictReader(io.StringIO(ratings_csv(report))))
+    assert [(row["verdict"], row["checked"][:14]) for row in table] == [
+        ("adequate", "flexure, shear")
+    ]
+    assert "torsion" in table[0]["not_checked"]
+    (beam,) = json.loads(ratings_json(report))["beams"]
+    assert (beam["verdict"], beam["checked"][:2]) == ("adequate", ["flexure", "shear"])
+    sets = {result.name: result for result in result_sets(report)}
+    properties = {p.name: p.value for p in sets["BeamRating_Result"].properties}
+    assert properties["Verdict"] == "adequate"
+    assert "flexure, shear" in str(properties["LimitStatesChecked"])
+    assert "torsion" in str(properties["LimitStatesNotChecked"])
+
+
+def told_nearby(texts: list[str], place: int, covered: str) -> bool:
+    """Whether the next texts say what it covers, or it is the filter of a page or its caution."""
+    after = " ".join(texts[place + 1 : place + 5])
+    is_filter = texts[place] == "adequate" and texts[place + 1 : place + 2] == ["falls short"]
+    return covered in after or is_filter or "neither adequate nor inadequate" in texts[place]
