@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 from typing import Any
 
 import pytest
@@ -283,3 +284,26 @@ def test_over_rib_diameters_of_an_open_model_are_found_out(open_models: Any) -> 
     strengths = {table.grades[bar.grade].strength for bar in table.bars}
     assert {given.value for given in strengths if given is not None} == {500.0}
     assert len(table.bar) > len(table.bars)  # several of them are many mapped bars
+
+
+@pytest.mark.parametrize(
+    ("found", "put"),
+    [
+        (r"(IFCSWEPTDISKSOLID\(#\d+),8\.", r"\1,'thick'"),
+        (r"IFCSWEPTDISKSOLID\(#\d+", "IFCSWEPTDISKSOLID(#1"),
+        (r"\(\(50\.,0\.,60\.\),", "((nan,0.,60.),"),
+        (r"(\$,\$),16\.,", r"\1,'thick',"),
+    ],
+)
+def test_bars_that_hold_what_their_class_does_not_allow_are_a_reason(
+    made: Model, found: str, put: str
+) -> None:
+    import ifcopenshell
+
+    model, beam = made
+    model.bars(beam, straight(50, 5950, 0, 60))
+    text = model.file.to_string()
+    assert re.search(found, text)
+    model.file = ifcopenshell.file.from_string(re.sub(found, put, text))
+    assert model.read(beam).bars == ()
+    assert model.read(beam).reasons != ""

@@ -145,8 +145,11 @@ def path_length(path: Path) -> float:
 
 
 def _point(coordinates: Sequence[float], scale: float) -> Point:
-    x, y, *rest = coordinates
-    return (x * scale, y * scale, rest[0] * scale if rest else 0.0)
+    """A point in space [mm]; what is no number ifcopenshell leaves out without a word."""
+    if len(coordinates) != 3:
+        raise UnreadableError(f"has a point of {len(coordinates)} coordinates, three are needed")
+    x, y, z = coordinates
+    return x * scale, y * scale, z * scale
 
 
 def _polyline(curve: Entity, units: ModelUnits) -> Path:
@@ -154,11 +157,7 @@ def _polyline(curve: Entity, units: ModelUnits) -> Path:
 
 
 def _points(coordinates: Iterable[Sequence[float]], scale: float) -> tuple[Point, ...]:
-    """Points of three or of two coordinates [mm]; quick, as bars are many."""
-    return tuple(
-        (c[0] * scale, c[1] * scale, c[2] * scale) if len(c) == 3 else _point(c, scale)
-        for c in coordinates
-    )
+    return tuple(_point(place, scale) for place in coordinates)
 
 
 def _indexed_poly_curve(curve: Entity, units: ModelUnits) -> Path:
@@ -246,8 +245,7 @@ def _circle_angle(frame: Matrix, trim: Sequence[Any], curve: Entity, units: Mode
 def _circle(circle: Entity, units: ModelUnits) -> tuple[Matrix, float]:
     """The axes [mm] and radius [mm] of a circle."""
     position = get(circle, "Position")
-    flat = position.is_a("IfcAxis2Placement2D")
-    axis = None if flat else get(position, "Axis")
+    axis = get(position, "Axis")
     reference = get(position, "RefDirection")
     frame = rigid(None if axis is None else axis[0], None if reference is None else reference[0])
     frame[:3, 3] = _point(get(position, "Location")[0], units.length)

@@ -15,7 +15,7 @@ from ifccheck.ifc.bar_paths import Floats, Ints, Path
 from ifccheck.ifc.bar_shapes import FARTHEST, BarShapes, Strand
 from ifccheck.ifc.bar_sizes import BarSize, Grade
 from ifccheck.ifc.context import Context
-from ifccheck.ifc.entity import Entity, UnreadableError
+from ifccheck.ifc.entity import ILL_TYPED, Entity, UnreadableError
 from ifccheck.ifc.placements import IDENTITY, Matrix
 from ifccheck.ifc.step_table import StepTable
 from ifccheck.ifc.swept_texts import read_swept_texts
@@ -172,6 +172,8 @@ def gather_bars(
             found.add(product, chain)
         except UnreadableError as error:
             unreadable[product.id()] = str(error)
+        except ILL_TYPED as error:
+            unreadable[product.id()] = f"holds what its class does not allow ({error})"
     return _within_reach(_table(found, unreadable, context.units.length))
 
 
