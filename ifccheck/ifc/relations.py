@@ -8,7 +8,7 @@ from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass, field
 from typing import Any
 
-from ifccheck.ifc.entity import Entity, get, several
+from ifccheck.ifc.entity import Entity, get, label, several
 
 Ids = tuple[int, ...]
 
@@ -131,6 +131,8 @@ def read_relations(file: Any) -> Relations:
 def _read_parts(found: _Gathering, relation: Entity) -> None:
     match = ONE_TO_MANY.search(relation.to_string())
     if match is None:
+        if relation.get_argument(4) and relation.get_argument(5):
+            raise ValueError(f"{label(relation)} relates what is no instance")
         return
     whole, related = int(match[1]), _ids(match[2])
     found.parts[whole] += related
