@@ -20,6 +20,7 @@ from ifccheck.errors import BriefError, ModelError, UsageError
 from ifccheck.ifc.opening import OpenedModel, open_model
 from ifccheck.ifc.reader import read_model
 from ifccheck.ifc.selection import select
+from ifccheck.ifc.step_table import make_step_table
 from ifccheck.outputs import write_all
 from ifccheck.publish.report import Report
 from ifccheck.rating.batch import Batch, batches
@@ -154,7 +155,8 @@ def _read(path: Path, brief: Brief | None, say: Say) -> Read:
     say(f"opening {path.name}")
     opened = open_model(path)
     say(f"reading {path.name}")
-    model = read_model(opened, _mapping(brief))
+    statements = make_step_table(opened.source, opened.scan)
+    model = read_model(opened, _mapping(brief), statements)
     if not model.beams and not model.out_of_scope:
         raise ModelError(f"{path}: holds no beam (IfcBeam); export the model with its beams")
     return Read(opened, model)

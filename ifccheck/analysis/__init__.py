@@ -1,1 +1,1 @@
-"""..."""
+"""What acts on beams: stations, statics, combinations, on arrays."""

@@ -1,1 +1,1 @@
-"""..."""
+"""How beams stand: contacts and spans."""

@@ -1,1 +1,1 @@
-"""..."""
+"""All that touches IFC: opening, reading, selecting and writing back."""

@@ -9,7 +9,7 @@ from contextlib import contextmanager
 from dataclasses import replace
 from typing import Any, Protocol
 
-from ifccheck.beam import Beam, Box, Model, OutOfScope, Remark
+from ifccheck.beam import Beam, Box, Model, OutOfScope, Reinforcement, Remark
 from ifccheck.errors import ModelError
 from ifccheck.ifc.beams import BeamReader, Identity
 from ifccheck.ifc.boxes import Boxes
@@ -19,6 +19,7 @@ from ifccheck.ifc.lexer import EXPORT_AGAIN
 from ifccheck.ifc.members import read_members
 from ifccheck.ifc.profiles import Profiles
 from ifccheck.ifc.reinforcement import read_reinforcement
+from ifccheck.ifc.step_table import StepTable
 from ifccheck.ifc.storeys import Storeys
 
 STAGE = "reading"
@@ -41,16 +42,19 @@ class Opened(Protocol):
     def remarks(self) -> tuple[Remark, ...]: ...  # noqa: D102
 
 
-def read_model(opened: Opened, mapping: Mapping[str, str]) -> Model:
+def read_model(
+    opened: Opened, mapping: Mapping[str, str], statements: StepTable | None = None
+) -> Model:
     """Return all that a model says of its beams.
 
     ``mapping`` names the properties that hold reinforcement: field = "Set.Property".
+    ``statements`` of the same file let the plainest bars be read many at once.
     Raises ModelError where the model has no unit of length to measure its beams by, or breaks
     its schema where that is not the matter of a single beam.
     """
     try:
         with _uncollected():
-            return _read(opened, mapping)
+            return _read(opened, mapping, statements)
     except ILL_TYPED as error:
         raise ModelError(
             f"{opened.file_name}: an instance does not hold what its class asks ({error}); "
@@ -70,7 +74,7 @@ def _uncollected() -> Iterator[None]:
             gc.enable()
 
 
-def _read(opened: Opened, mapping: Mapping[str, str]) -> Model:
+def _read(opened: Opened, mapping: Mapping[str, str], statements: StepTable | None) -> Model:
     context = make_context(opened.file, opened.schema)
     entities = opened.file.by_type("IfcBeam")
     if entities and "length" not in context.units.declared:
@@ -97,7 +101,7 @@ def _read(opened: Opened, mapping: Mapping[str, str]) -> Model:
         file_name=opened.file_name,
         schema=opened.schema,
         sha256=opened.sha256,
-        beams=tuple(_reinforced(context, beams, mapping)),
+        beams=tuple(_reinforced(context, beams, mapping, statements)),
         out_of_scope=tuple(left_out),
         members=members.members,
         storeys=storeys.all,
@@ -130,12 +134,23 @@ def _repeats(entities: Sequence[Entity]) -> Iterator[Remark]:
 
 
 def _reinforced(
-    context: Context, beams: Sequence[Beam], mapping: Mapping[str, str]
+    context: Context,
+    beams: Sequence[Beam],
+    mapping: Mapping[str, str],
+    statements: StepTable | None,
 ) -> Iterator[Beam]:
     """The beams with the reinforcement that the model holds for those whose body is read."""
     frames = {
         beam.step_id: BeamFrame(beam.axis, beam.runs) for beam in beams if beam.axis is not None
     }
-    reinforcement = read_reinforcement(context, frames, mapping)
+    found = read_reinforcement(context, frames, mapping, statements)
     for beam in beams:
-        yield replace(beam, reinforcement=reinforcement.get(beam.step_id, ()))
+        sources = found.get(beam.step_id, ())
+        if beam.ordinal:
+            sources = tuple(_by_key(source, beam.key) for source in sources)
+        yield replace(beam, reinforcement=sources)
+
+
+def _by_key(source: Reinforcement, key: str) -> Reinforcement:
+    """The same reinforcement with its remarks on the beam of a repeated GlobalId."""
+    return replace(source, remarks=tuple(replace(r, beam=key) for r in source.remarks))

@@ -1,0 +1,1 @@
+"""Code-neutral mechanics of sections, on arrays."""
