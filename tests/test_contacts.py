@@ -125,12 +125,14 @@ def test_seen_from_the_girder_our_end_is_between_and_at_its_side() -> None:
     assert places(contacts["G"]) == [("B", "between", "side")]
 
 
-def test_what_stands_on_the_beam_brings_its_reaction_and_what_crosses_under_does_not() -> None:
+def test_what_stands_on_the_beam_brings_its_reaction_and_so_may_what_crosses_under() -> None:
     post = column("P", 3000.0, DEPTH, 3600.0)
     under = member("U", "IfcBeam", (1000.0, -3000.0, -500.0), (1300.0, 3000.0, 0.0))
     contacts = found(post, under)
     assert places(contacts) == [("U", "between", "below"), ("P", "between", "above")]
-    assert [c.other for c in between_reactions(contacts)] == ["P (IfcColumn)"]
+    assert between_reactions(contacts) == contacts
+    prop = found(column("C", 3000.0, -3000.0, 0.0))
+    assert between_reactions(prop) == ()
 
 
 @pytest.mark.parametrize("top", [0.0, 300.0, DEPTH, 4000.0])

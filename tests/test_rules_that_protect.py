@@ -130,23 +130,47 @@ RESTING: Mapping[str, str] = {
         Beam("R-1", at=(3000.0, -2000.0, 3600.0), along=(0.0, 1.0, 0.0), length=4000.0,
              material="Structural steel S355", notation=None, columns=False),
     ),
-    "a beam that hangs below it": hall(
-        Beam(), others=[Block("H-9", (3000.0, 0.0, 1500.0), (200, 200), 1500, kind="IFCMEMBER")]
-    ),
 }  # fmt: skip
 
 
-@pytest.mark.parametrize("kind", [kind for kind in RESTING if "hangs" not in kind])
+@pytest.mark.parametrize("kind", RESTING)
 def test_what_rests_between_the_supports(tmp_path: Path, kind: str) -> None:
     check_not_rated(rated(tmp_path, RESTING[kind]), "reactions not included: ")
     complete = stated("beams", "loads_complete = true")
     check_adequate(rated(tmp_path, RESTING[kind], LOAD, complete))
 
 
-def test_what_touches_it_from_below_between_its_ends(tmp_path: Path) -> None:
-    """A hanger or a prop: it may pull or bear, and either way the single span is not known."""
-    hung = RESTING["a beam that hangs below it"]
-    check_not_rated(rated(tmp_path, hung), "supports unknown")
+def test_what_rests_on_it_in_parts(tmp_path: Path) -> None:
+    """A member whose body is that of its parts rests on the beam where they do."""
+    whole = hall(Beam(), ON_TOP)
+    check_not_rated(rated(tmp_path, in_parts(whole, "R-1")), "reactions not included: R-1")
+
+
+def in_parts(model: str, mark: str) -> str:
+    """A model in which the body of a beam is that of a part of it."""
+    number = number_of(model, f"IFCBEAM('{guid_of(f'beam {mark}')}'")
+    found = re.search(rf"#{number}=IFCBEAM\(.*?,(#\d+),(#\d+),\$,\.BEAM\.\);", model)
+    assert found
+    empty = found[0].replace(found[2], "$")
+    return with_lines(
+        changed(model, found[0], empty),
+        f"IFCBUILDINGELEMENTPART('{guid_of('part')}',$,'part',$,$,{found[1]},{found[2]},$,$)",
+        f"IFCRELAGGREGATES('{guid_of('parts')}',$,$,$,#{number},(#9001))",
+    )
+
+
+@pytest.mark.parametrize("kind", ["IFCMEMBER", "IFCBEAM"])
+def test_what_hangs_below_it_between_its_ends(tmp_path: Path, kind: str) -> None:
+    """It may pull or bear: the supports are not known, and once they are, its reaction is not."""
+    hanger = Block("H-9", (3000.0, 0.0, 1500.0), (200, 200), 1500, kind=kind)
+    if kind == "IFCBEAM":
+        hanger = replace(hanger, material="Structural steel S355")
+    hung = hall(Beam(), others=[hanger])
+    pinned = stated("supports", 'start = "pinned"\nend = "pinned"')
+    complete = stated("beams", "loads_complete = true")
+    check_not_rated(rated(tmp_path, hung, LOAD, complete), "supports unknown")
+    check_not_rated(rated(tmp_path, hung, LOAD, pinned), "reactions not included: H-9")
+    check_adequate(rated(tmp_path, hung, LOAD, pinned, complete))
 
 
 def test_what_touches_the_tip_of_a_cantilever(tmp_path: Path) -> None:

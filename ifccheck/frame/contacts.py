@@ -206,15 +206,18 @@ def between_reactions(
 ) -> tuple[Contact, ...]:
     """Contacts that may bring the reaction of another member to a beam between its supports.
 
-    Those are beams, columns and members that do not lie under it, and at a free end any of
-    them: what touches the tip of a cantilever hangs on it.
+    Those are beams, columns and members, but no columns under it, and at a free end any of
+    them: what touches the tip of a cantilever hangs on it, and so may a beam under its soffit.
     """
     tips = {"start"} if free_start else set()
     tips |= {"end"} if free_end else set()
-    framing = [c for c in contacts if c.other_class.removesuffix("StandardCase") in FRAMING]
-    return tuple(
-        c for c in framing if c.place in tips or (c.place == "between" and c.side != "below")
-    )
+    found = []
+    for contact in contacts:
+        kind = contact.other_class.removesuffix("StandardCase")
+        hangs = contact.side != "below" or kind not in UPRIGHT
+        if kind in FRAMING and (contact.place in tips or (contact.place == "between" and hangs)):
+            found.append(contact)
+    return tuple(found)
 
 
 def reactions_reason(contacts: Sequence[Contact]) -> Reason | None:

@@ -29,6 +29,13 @@ CLASSES = (
 """What may carry a beam or rest on it; a class that a schema lacks is passed over."""
 
 
+NOT_SOLID = (
+    "IfcReinforcingElement", "IfcFastener", "IfcMechanicalFastener", "IfcDiscreteAccessory",
+    "IfcFeatureElement",
+)  # fmt: skip
+"""Parts that are no body of a member by themselves: its bars, fasteners, openings."""
+
+
 @dataclass(frozen=True, slots=True)
 class Members:
     """The members with a readable box, and what is doubtful of the rest."""
@@ -46,22 +53,36 @@ def read_members(
     for entity in _entities(context):
         step_id = entity.id()
         try:
-            box = known.get(step_id) or boxes.of(entity)
+            found = _boxes(context, boxes, entity, known.get(step_id))
         except (UnreadableError, *ILL_TYPED):
             unread[entity.is_a()] += 1
             continue
-        if box is not None:
-            members.append(
-                Member(
-                    step_id=step_id,
-                    guid=text_at(entity, GLOBAL_ID),
-                    ifc_class=entity.is_a(),
-                    name=text_at(entity, NAME) or text_at(entity, TAG),
-                    storey=storeys.name_of(step_id),
-                    box=box,
-                )
+        members += [
+            Member(
+                step_id=step_id,
+                guid=text_at(entity, GLOBAL_ID),
+                ifc_class=entity.is_a(),
+                name=text_at(entity, NAME) or text_at(entity, TAG),
+                storey=storeys.name_of(step_id),
+                box=box,
             )
+            for box in found
+        ]
     return Members(tuple(members), _unread(unread))
+
+
+def _boxes(context: Context, boxes: Boxes, entity: Entity, known: Box | None) -> list[Box]:
+    """The box of a member, or the boxes of its parts where only those have bodies."""
+    own = known or boxes.of(entity)
+    if own is not None:
+        return [own]
+    parts = map(context.file.by_id, context.relations.descendants(entity.id()))
+    found = [boxes.of(part) for part in parts if _is_solid_part(part)]
+    return [box for box in found if box is not None]
+
+
+def _is_solid_part(part: Entity) -> bool:
+    return part.is_a("IfcElement") and not any(part.is_a(kind) for kind in NOT_SOLID)
 
 
 def _entities(context: Context) -> Iterator[Entity]:
