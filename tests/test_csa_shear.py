@@ -417,12 +417,13 @@ def test_the_quick_utilisation_is_that_of_the_check(state_of, case):
     shape = acting.moment.shape
     every = np.indices(shape).reshape(2, -1)
     basis = state_of.quick.basis(state).take(every[1])
-    quick = state_of.quick.utilisation(basis, acting.at(tuple(every)))
-    whole = state_of.check(state, acting).utilisation
-    np.testing.assert_allclose(quick.reshape(shape), whole, rtol=1e-12)
+    quick, resistance = state_of.quick.evaluate(basis, acting.at(tuple(every)))
+    whole = state_of.check(state, acting)
+    np.testing.assert_allclose(quick.reshape(shape), whole.utilisation, rtol=1e-12)
+    np.testing.assert_allclose(resistance.reshape(shape), whole.resistance, rtol=1e-12)
     some = slice(0, None, 2)
-    again = state_of.quick.utilisation(basis.take(some), acting.at(tuple(every)).take(some))
-    np.testing.assert_array_equal(again, quick[some])
+    again = state_of.quick.evaluate(basis.take(some), acting.at(tuple(every)).take(some))
+    np.testing.assert_array_equal(again, (quick[some], resistance[some]))
 
 
 @settings(deadline=None, max_examples=30)

@@ -42,7 +42,7 @@ from ifccheck.rating.assembly import (
     within,
 )
 from ifccheck.rating.elements import Elements, distinct_elements, first_greatest
-from ifccheck.rating.factors import Factors, rating_factors, utilisation_everywhere
+from ifccheck.rating.factors import Factors, evaluate_everywhere, rating_factors
 from ifccheck.rating.subject import Subject
 from ifccheck.rating.utilisation import worst_of
 from ifccheck.rating.verdict import Evaluated
@@ -139,7 +139,7 @@ def rate_batch(
     elements = distinct_elements(acting, stations.beam)
     bases = _bases(standard, prepared, elements)
     found = [
-        utilisation_everywhere(state, basis, elements.station.size, elements.total.take)
+        evaluate_everywhere(state, basis, elements.station.size, elements.total.take)
         for state, basis in zip(standard.limit_states, bases, strict=True)
     ]
     return Batch(
@@ -150,14 +150,14 @@ def rate_batch(
         demand=acting.total,
         states=tuple(
             _evaluated(state, prepared, acting.total, utilisation, elements)
-            for state, utilisation in zip(standard.limit_states, found, strict=True)
+            for state, (utilisation, _) in zip(standard.limit_states, found, strict=True)
         ),
         factors={
             cases[row].name: rating_factors(standard.limit_states, bases, elements, share)
             for row, share in zip(acting.scaled, elements.shares, strict=True)
         },
         places=_places(subjects, cases, combinations, effects, stations),
-        envelope=_envelope(standard, prepared, acting.total, found, elements),
+        envelope=_envelope(standard, acting.total, found, elements),
         notes=standard.notes(prepared),
         basis=standard.basis(prepared),
     )
@@ -305,11 +305,11 @@ def _evaluated(
 
 def _envelope(
     standard: Standard,
-    prepared: Any,
     demand: Demand,
-    utilisations: Sequence[Floats],
+    found: Sequence[tuple[Floats, Floats]],
     elements: Elements,
 ) -> Envelope:
+    """Extremes of demand, and resistances, from the utilisation and resistance at elements."""
     stations = demand.moment.shape[-1]
     moment, shear = demand.moment.reshape(-1, stations), demand.shear.reshape(-1, stations)
     return Envelope(
@@ -318,16 +318,13 @@ def _envelope(
         shear.max(axis=0),
         shear.min(axis=0),
         {
-            state.name: _worst_resistance(state, prepared, elements, utilisation)
-            for state, utilisation in zip(standard.limit_states, utilisations, strict=True)
+            state.name: resistance[_worst_elements(utilisation, elements)]
+            for state, (utilisation, resistance) in zip(standard.limit_states, found, strict=True)
         },
     )
 
 
-def _worst_resistance(
-    state: LimitState, prepared: Any, elements: Elements, utilisation: Floats
-) -> Floats:
-    """Resistance of each station in the arrangement of its greatest utilisation (N)."""
+def _worst_elements(utilisation: Floats, elements: Elements) -> Ints:
+    """Row of the greatest utilisation of each station (N), one that is not known before all."""
     known = np.where(np.isnan(utilisation), np.inf, utilisation)
-    _, row = first_greatest(known, elements.first_of_station)
-    return state.check(prepared, elements.total.take(row)).resistance
+    return first_greatest(known, elements.first_of_station)[1]

@@ -21,6 +21,9 @@ GREATEST_FACTOR = 1000.0
 """A case that does not govern up to this many times its loads is not limited."""
 _TOLERANCE = 1e-9
 _MOST_STEPS = 200
+_NUMBERS = ("moment", "shear", "critical_shear", "peak_sagging", "peak_hogging")
+_TURNING = slice(0, 3)
+"""Those that may change their sense"""
 _AT_ONCE = 8192
 """Elements evaluated together, so that their arrays stay in the processor's cache"""
 _INTERIOR = (0.1, 0.35, 0.7)
@@ -41,48 +44,62 @@ class Factors:
 
 @dataclass(frozen=True, slots=True)
 class _Problem:
-    """One limit state under a rated case, at the elements (E) of the beams that it acts on."""
+    """One limit state under a rated case at some elements (E), sorted by beam."""
 
     state: LimitState
     basis: Any
     """What the limit state needs at each element"""
-    rest: Demand
-    share: Demand
+    rest: Floats
+    """The numbers of a Demand without the case (5, E)"""
+    share: Floats
+    """The part of the case (5, E)"""
+    can_sag: Bools
+    can_hog: Bools
     beam: Ints
     element: Ints
     """What each element stands for in the batch"""
 
     def everywhere(self, factor: Floats) -> Floats:
-        """Utilisation of every element, each beam at its own factor (B)."""
-        return _counted(
-            utilisation_everywhere(
-                self.state, self.basis, self.beam.size, lambda rows: self._demand(rows, factor)
-            )
+        """Utilisation of every element, each beam at its own factor (B).
+
+        What cannot be worked out counts as exceeding.
+        """
+
+        def demand(rows: slice) -> Demand:
+            grown = self.share[:, rows] * factor[self.beam[rows]]
+            grown += self.rest[:, rows]
+            moment, shear, critical, sagging, hogging = grown
+            sag, hog = self.can_sag[rows], self.can_hog[rows]
+            return Demand(moment, shear, critical, sagging, hogging, sag, hog)
+
+        found, _ = evaluate_everywhere(self.state, self.basis, self.beam.size, demand)
+        found[np.isnan(found)] = np.inf
+        return found
+
+    def take(self, rows: Ints) -> _Problem:
+        """The same at some of the elements."""
+        return _Problem(
+            state=self.state,
+            basis=self.basis.take(rows),
+            rest=self.rest[:, rows],
+            share=self.share[:, rows],
+            can_sag=self.can_sag[rows],
+            can_hog=self.can_hog[rows],
+            beam=self.beam[rows],
+            element=self.element[rows],
         )
 
-    def at(self, rows: Ints, factor: Floats) -> Floats:
-        """Utilisation at some elements, each beam at its own factor (B)."""
-        demand = self._demand(rows, factor)
-        return _counted(self.state.quick.utilisation(self.basis.take(rows), demand))
 
-    def _demand(self, rows: Ints | slice, factor: Floats) -> Demand:
-        return _grown(self.rest.take(rows), self.share.take(rows), factor[self.beam[rows]])
-
-
-def utilisation_everywhere(
+def evaluate_everywhere(
     state: LimitState, basis: Any, size: int, demand: Callable[[slice], Demand]
-) -> Floats:
-    """Utilisation of a limit state at all elements (E), given the demand of some of them."""
-    found = np.empty(size)
+) -> tuple[Floats, Floats]:
+    """Utilisation and resistance of a limit state at all elements (E), given the demand of
+    a stretch of them."""
+    utilisation, resistance = np.empty(size), np.empty(size)
     for start in range(0, size, _AT_ONCE):
         rows = slice(start, start + _AT_ONCE)
-        found[rows] = state.quick.utilisation(basis.take(rows), demand(rows))
-    return found
-
-
-def _counted(utilisation: Floats) -> Floats:
-    """What cannot be worked out counts as exceeding."""
-    return np.where(np.isnan(utilisation), np.inf, utilisation)
+        utilisation[rows], resistance[rows] = state.quick.evaluate(basis.take(rows), demand(rows))
+    return utilisation, resistance
 
 
 def rating_factors(
@@ -124,17 +141,21 @@ def _problems(
     """The limit states at the elements of the beams that the rated case acts on."""
     moved = (share.moment != 0.0) | (share.shear != 0.0)
     reached = np.logical_or.reduceat(moved, elements.first_of_beam)[elements.beam]
-    rows: Ints | slice = slice(None) if reached.all() else np.flatnonzero(reached)
     if not reached.any():
         return []
-    share = share.take(rows)
-    rest = _less(elements.total.take(rows), share)
-    beam, element = elements.beam[rows], elements.element[rows]
-    taken = {id(basis): basis.take(rows) for basis in bases}
-    return [
-        _Problem(state, taken[id(basis)], rest, share, beam, element)
+    part, whole = (
+        np.stack([getattr(demand, name) for name in _NUMBERS]) for demand in (share, elements.total)
+    )
+    rest = whole - part
+    sag, hog = elements.total.can_sag, elements.total.can_hog
+    problems = [
+        _Problem(state, basis, rest, part, sag, hog, elements.beam, elements.element)
         for state, basis in zip(states, bases, strict=True)
     ]
+    if reached.all():
+        return problems
+    rows = np.flatnonzero(reached)
+    return [problem.take(rows) for problem in problems]
 
 
 def _least_factor(problem: _Problem, ceiling: Floats) -> tuple[Floats, Ints]:
@@ -145,15 +166,19 @@ def _least_factor(problem: _Problem, ceiling: Floats) -> tuple[Floats, Ints]:
     at = np.full(ceiling.size, -1, dtype=np.intp)
     low, high = np.zeros_like(ceiling), ceiling.copy()
     below = problem.everywhere(low)
-    _mark(at, problem, np.flatnonzero(below > 1.0))
+    _mark(at, problem, below > 1.0)
     high[at >= 0] = 0.0
+    if not problem.state.quick.loaded:
+        return np.where(at >= 0, 0.0, np.inf), at
     above = problem.everywhere(high)
     over = above > 1.0
     if not problem.state.linear:  # the greater of nothing and a straight line has no hump
         _look_inside(problem, over, above, high)
     rows = np.flatnonzero(over & (high[problem.beam] > 0.0))
-    _mark(at, problem, rows)
-    _close_in(problem, rows, _bracket(problem, rows, low, high, below, above), at)
+    if rows.size:
+        governing, below, above = problem.take(rows), below[rows], above[rows]
+        _mark(at, governing, np.ones(rows.size, dtype=np.bool_))
+        _close_in(governing, _bracket(governing, low, high, below, above), at)
     return np.where(at >= 0, high, np.inf), at
 
 
@@ -163,26 +188,25 @@ def _look_inside(problem: _Problem, over: Bools, above: Floats, high: Floats) ->
     Mark them in ``over``, lower ``high`` to where they do, and bring ``above``, the utilisation
     there, up to date.
     """
-    odd = np.flatnonzero(_may_turn(problem) & (high[problem.beam] > 0.0))
-    if not odd.size:
+    rows = np.flatnonzero(_may_turn(problem) & (high[problem.beam] > 0.0))
+    if not rows.size:
         return
-    bound, beam = high.copy(), problem.beam[odd]
+    odd, bound = problem.take(rows), high.copy()
     for fraction in reversed(_INTERIOR):
-        seen = problem.at(odd, fraction * high) > 1.0
-        over[odd[seen]] = True
-        bound[beam[seen]] = fraction * high[beam[seen]]
-    rows = np.flatnonzero((bound < high)[problem.beam] & over)
+        seen = odd.everywhere(fraction * high) > 1.0
+        over[rows[seen]] = True
+        bound[odd.beam[seen]] = fraction * high[odd.beam[seen]]
+    lowered = np.flatnonzero((bound < high)[problem.beam] & over)
     high[:] = bound
-    if rows.size:
-        above[rows] = problem.at(rows, high)
+    if lowered.size:
+        above[lowered] = problem.take(lowered).everywhere(high)
 
 
 def _may_turn(problem: _Problem) -> Bools:
     """Elements whose moment or shear the case first relieves."""
-    opposed = np.zeros(problem.beam.size, dtype=np.bool_)
-    for name in ("moment", "shear", "critical_shear"):
-        opposed |= getattr(problem.rest, name) * getattr(problem.share, name) < 0.0
-    return opposed
+    opposed = problem.rest[_TURNING] * problem.share[_TURNING] < 0.0
+    turning: Bools = np.any(opposed, axis=0)
+    return turning
 
 
 @dataclass(frozen=True, slots=True)
@@ -197,15 +221,26 @@ class _Bracket:
 
 
 def _bracket(
-    problem: _Problem, rows: Ints, low: Floats, high: Floats, below: Floats, above: Floats
+    problem: _Problem, low: Floats, high: Floats, below: Floats, above: Floats
 ) -> _Bracket:
-    """The bracket of each beam from the utilisation of its elements at both ends (E)."""
-    beam = problem.beam[rows]
-    ends = (greatest_of_beams(found[rows] - 1.0, beam, low.size) for found in (below, above))
-    return _Bracket(low, high, *ends)
+    """The bracket of each beam from the utilisation of its elements at both ends (E).
+
+    A linear utilisation is nowhere above its chord, so that no element exceeds below the
+    least factor at which a chord does.
+    """
+    at_low = greatest_of_beams(below - 1.0, problem.beam, low.size)
+    at_high = greatest_of_beams(above - 1.0, problem.beam, low.size)
+    if problem.state.linear:
+        with np.errstate(invalid="ignore"):
+            crossing = (1.0 - below) / (above - below)
+        least = -greatest_of_beams(-crossing, problem.beam, low.size)
+        better = np.isfinite(least) & (least > _TOLERANCE)
+        low[better] += (high - low)[better] * least[better] * (1.0 - _TOLERANCE)
+        at_low[better] = -_TOLERANCE
+    return _Bracket(low, high, at_low, at_high)
 
 
-def _close_in(problem: _Problem, rows: Ints, bracket: _Bracket, at: Ints) -> None:
+def _close_in(problem: _Problem, bracket: _Bracket, at: Ints) -> None:
     """Narrow every beam's bracket in place, keeping only elements that can still govern.
 
     Regula falsi in its Illinois form, exact in one step where utilisation is linear; every
@@ -214,21 +249,22 @@ def _close_in(problem: _Problem, rows: Ints, bracket: _Bracket, at: Ints) -> Non
     low, high, below, above = bracket.low, bracket.high, bracket.below, bracket.above
     last = np.zeros(low.size, dtype=np.intp)
     for step in range(1, _MOST_STEPS):
-        if not rows.size:
-            return
-        beam = problem.beam[rows]
         trial = low + 0.5 * (high - low) if step % 4 == 0 else _chord(bracket)
-        found = problem.at(rows, trial) - 1.0
-        excess = greatest_of_beams(found, beam, low.size)
+        found = problem.everywhere(trial) - 1.0
+        excess = greatest_of_beams(found, problem.beam, low.size)
         over, under = excess > 0.0, (excess <= 0.0) & np.isfinite(excess)
         hit = found > 0.0
-        _mark(at, problem, rows[hit])
+        _mark(at, problem, hit)
         below[over & (last > 0)] *= 0.5
         above[under & (last < 0)] *= 0.5
         high[over], above[over], last[over] = trial[over], excess[over], 1
         low[under], below[under], last[under] = trial[under], excess[under], -1
         open_ = high - low > _TOLERANCE * np.maximum(high, 1e-6)
-        rows = rows[open_[beam] & (hit | ~over[beam])]
+        kept = open_[problem.beam] & (hit | ~over[problem.beam])
+        if not kept.any():
+            return
+        if not kept.all():
+            problem = problem.take(np.flatnonzero(kept))
 
 
 def _chord(bracket: _Bracket) -> Floats:
@@ -242,30 +278,9 @@ def _chord(bracket: _Bracket) -> Floats:
     return low + width * np.clip(share, nudge, 1.0 - nudge)
 
 
-def _mark(at: Ints, problem: _Problem, rows: Ints) -> None:
+def _mark(at: Ints, problem: _Problem, chosen: Bools) -> None:
     """Note, for each beam, the first in the batch of some elements."""
-    if rows.size:
-        beam = problem.beam[rows]
+    beam = problem.beam[chosen]
+    if beam.size:
         first = np.flatnonzero(np.diff(beam, prepend=-1))
-        at[beam[first]] = np.minimum.reduceat(problem.element[rows], first)
-
-
-def _less(total: Demand, share: Demand) -> Demand:
-    return _linear(total, share, lambda whole, part: whole - part)
-
-
-def _grown(rest: Demand, share: Demand, factor: Floats) -> Demand:
-    return _linear(rest, share, lambda base, part: base + factor * part)
-
-
-def _linear(first: Demand, second: Demand, join: Callable[[Floats, Floats], Floats]) -> Demand:
-    """Demand of two parts together; what can sag or hog holds for every factor."""
-    return Demand(
-        moment=join(first.moment, second.moment),
-        shear=join(first.shear, second.shear),
-        critical_shear=join(first.critical_shear, second.critical_shear),
-        peak_sagging=join(first.peak_sagging, second.peak_sagging),
-        peak_hogging=join(first.peak_hogging, second.peak_hogging),
-        can_sag=first.can_sag,
-        can_hog=first.can_hog,
-    )
+        at[beam[first]] = np.minimum.reduceat(problem.element[chosen], first)

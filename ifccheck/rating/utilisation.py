@@ -47,6 +47,10 @@ def worst_of(utilisation: Floats, element: Ints, first: Ints) -> Worst:
         Row of the first element of each beam, ascending (B).
     """
     missing = np.isnan(utilisation)
+    if not missing.any():
+        greatest, row = first_greatest(utilisation, first)
+        complete = np.zeros(first.size, dtype=np.bool_)
+        return Worst(np.maximum(greatest, 0.0), element[row], complete, element[row])
     greatest, row = first_greatest(np.where(missing, -np.inf, utilisation), first)
     lacks, lacking = first_greatest(missing.astype(np.float64), first)
     return Worst(np.maximum(greatest, 0.0), element[row], lacks > 0.0, element[lacking])

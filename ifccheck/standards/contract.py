@@ -86,14 +86,16 @@ class Column:
 
 @dataclass(frozen=True, slots=True)
 class Quick:
-    """The utilisation of a limit state alone, for the many places where nothing is printed."""
+    """A limit state without what its calculation prints, for the many places where nothing is."""
 
-    basis: Callable[[Any], Prepared]
-    """Of a Prepared, what ``utilisation`` needs; limit states that share the function share
-    what it gives"""
-    utilisation: Callable[[Any, Demand], Floats]
-    """Check.utilisation, given that basis; demand and basis may hold any stations in any order,
-    so that arrays are (N)"""
+    basis: Callable[[Any], Any]
+    """What ``evaluate`` needs of a Prepared; has ``take`` like one. Limit states that share the
+    function share what it gives"""
+    evaluate: Callable[[Any, Demand], tuple[Floats, Floats]]
+    """Utilisation and resistance as Check has them, given that basis; demand and basis may hold
+    any stations in any order, so that arrays are (N)"""
+    loaded: bool = True
+    """False where the loads change nothing"""
 
 
 @dataclass(frozen=True, slots=True)
@@ -110,7 +112,8 @@ class LimitState:
     demand_unit: str
     """"N*mm", "N" ..."""
     linear: bool
-    """Demand is linear in the loads and resistance does not depend on them."""
+    """Demand is linear in the loads, or nothing where that is less, and resistance does not
+    depend on them."""
     check: Callable[[Any, Demand], Check]
     quick: Quick
     lines: tuple[CalculationLine, ...]

@@ -91,12 +91,12 @@ def _top_resistance(prepared: Prepared) -> Column:
     return Column(prepared.hogging.moment_resistance)
 
 
-def _sagging_utilisation(resistance: Column, demand: Demand) -> Floats:
-    return utilisation(_sagging(demand), resistance.values)
+def _quick_sagging(resistance: Column, demand: Demand) -> tuple[Floats, Floats]:
+    return utilisation(_sagging(demand), resistance.values), resistance.values
 
 
-def _hogging_utilisation(resistance: Column, demand: Demand) -> Floats:
-    return utilisation(_hogging(demand), resistance.values)
+def _quick_hogging(resistance: Column, demand: Demand) -> tuple[Floats, Floats]:
+    return utilisation(_hogging(demand), resistance.values), resistance.values
 
 
 def _check(prepared: Prepared, face: FaceState, moment: Floats) -> Check:
@@ -310,7 +310,7 @@ FLEXURE_SAGGING = LimitState(
     demand_unit="N*mm",
     linear=True,
     check=_check_sagging,
-    quick=Quick(_soffit_resistance, _sagging_utilisation),
+    quick=Quick(_soffit_resistance, _quick_sagging),
     lines=LINES,
 )
 
@@ -322,6 +322,6 @@ FLEXURE_HOGGING = LimitState(
     demand_unit="N*mm",
     linear=True,
     check=_check_hogging,
-    quick=Quick(_top_resistance, _hogging_utilisation),
+    quick=Quick(_top_resistance, _quick_hogging),
     lines=LINES,
 )

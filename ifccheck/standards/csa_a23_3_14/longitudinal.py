@@ -24,7 +24,12 @@ from ifccheck.standards.csa_a23_3_14.shear_lines import (
     STIRRUP_TERM_LINES,
     given,
 )
-from ifccheck.standards.csa_a23_3_14.tension_face import Faces, utilisation_of, worse_face
+from ifccheck.standards.csa_a23_3_14.tension_face import (
+    Faces,
+    utilisation_of,
+    worse_face,
+    worse_quick_face,
+)
 from ifccheck.standards.csa_a23_3_14.web import Acting, Cracked, Web, acting, crack, webs
 
 
@@ -179,15 +184,16 @@ def check(prepared: Prepared, demand: Demand) -> Check:
     )
 
 
-def utilisation(faces: Faces[Web], demand: Demand) -> Floats:
-    """Utilisation in longitudinal tension alone."""
+def _quick(faces: Faces[Web], demand: Demand) -> tuple[Floats, Floats]:
+    """Utilisation and resistance alone."""
     with np.errstate(divide="ignore", invalid="ignore", over="ignore"):
-        return worse_face(faces, demand, _utilisation)[1]
+        return worse_quick_face(faces, demand, _quick_face)
 
 
-def _utilisation(web: Web, demand: Demand) -> tuple[None, Floats]:
+def _quick_face(web: Web, demand: Demand) -> tuple[Floats, Floats]:
     acts = acting(demand)
-    return None, _both_sides(web, demand, acts, crack(web, acts)).utilisation
+    sides = _both_sides(web, demand, acts, crack(web, acts))
+    return np.where(web.beyond_materials, np.nan, sides.steel), sides.utilisation
 
 
 def _evaluate(section: Section, demand: Demand) -> tuple[LongitudinalDetails, Floats]:
@@ -318,6 +324,6 @@ LONGITUDINAL = LimitState(
     demand_unit="N",
     linear=False,
     check=check,
-    quick=Quick(webs, utilisation),
+    quick=Quick(webs, _quick),
     lines=(*SECTION_LINES, *STIRRUP_LINES, *CRACK_LINES, *STIRRUP_TERM_LINES, *FORCE_LINES),
 )

@@ -6,11 +6,10 @@ from dataclasses import dataclass, fields, replace
 
 import numpy as np
 
-from ifccheck.mechanics.arrays import Bools, Demand, Floats
+from ifccheck.mechanics.arrays import Bools, Demand, Floats, Ints
 from ifccheck.standards.contract import (
     CalculationLine,
     Check,
-    Column,
     LimitState,
     Note,
     Quick,
@@ -74,13 +73,26 @@ def _utilisation(details: MinimumStirrupDetails, inside: Bools) -> Floats:
     return np.where(details.needed & inside, ratio, 0.0)
 
 
-def _utilisation_of_stations(prepared: Prepared) -> Column:
-    return Column(_utilisation(_details(prepared), prepared.inside))
+@dataclass(frozen=True, slots=True)
+class _Stations:
+    """Utilisation and resistance of each station (N)."""
+
+    utilisation: Floats
+    provided: Floats
+
+    def take(self, rows: Ints | slice) -> _Stations:
+        """The same at the given stations; rows may repeat."""
+        return _Stations(self.utilisation[rows], self.provided[rows])
 
 
-def _unchanged(utilisation: Column, demand: Demand) -> Floats:
-    """The utilisation of each station, whatever the loads."""
-    return utilisation.values
+def _stations(prepared: Prepared) -> _Stations:
+    details = _details(prepared)
+    return _Stations(_utilisation(details, prepared.inside), details.provided)
+
+
+def _quick(stations: _Stations, demand: Demand) -> tuple[Floats, Floats]:
+    """The same whatever the loads."""
+    return stations.utilisation, stations.provided
 
 
 def _details(prepared: Prepared) -> MinimumStirrupDetails:
@@ -161,6 +173,6 @@ MINIMUM_STIRRUPS = LimitState(
     demand_unit="mm2/mm",
     linear=False,
     check=check,
-    quick=Quick(_utilisation_of_stations, _unchanged),
+    quick=Quick(_stations, _quick, loaded=False),
     lines=LINES,
 )

@@ -13,7 +13,12 @@ from ifccheck.standards.csa_a23_3_14 import shear as formulas
 from ifccheck.standards.csa_a23_3_14.sections import Prepared
 from ifccheck.standards.csa_a23_3_14.shear_lines import SHEAR_LINES
 from ifccheck.standards.csa_a23_3_14.stirrups import greatest_stirrup_spacing
-from ifccheck.standards.csa_a23_3_14.tension_face import Faces, utilisation_of, worse_face
+from ifccheck.standards.csa_a23_3_14.tension_face import (
+    Faces,
+    utilisation_of,
+    worse_face,
+    worse_quick_face,
+)
 from ifccheck.standards.csa_a23_3_14.web import (
     Acting,
     Cracked,
@@ -165,17 +170,17 @@ def _resistance(web: Web, cracked: Cracked, concrete: _Concrete) -> Floats:
     return np.where(outside, np.nan, np.where(cracked.has_steel, resistance, 0.0))
 
 
-def _utilisation(web: Web, demand: Demand) -> tuple[None, Floats]:
+def _quick_face(web: Web, demand: Demand) -> tuple[Floats, Floats]:
     acts = acting(demand)
     cracked = crack(web, acts)
     resistance = _resistance(web, cracked, _concrete(web, cracked))
-    return None, utilisation_of(acts.shear, resistance, web.inside)
+    return resistance, utilisation_of(acts.shear, resistance, web.inside)
 
 
-def utilisation(faces: Faces[Web], demand: Demand) -> Floats:
-    """Utilisation in shear alone."""
+def _quick(faces: Faces[Web], demand: Demand) -> tuple[Floats, Floats]:
+    """Utilisation and resistance alone."""
     with np.errstate(divide="ignore", invalid="ignore", over="ignore"):
-        return worse_face(faces, demand, _utilisation)[1]
+        return worse_quick_face(faces, demand, _quick_face)
 
 
 def evaluate(section: Section, demand: Demand) -> tuple[ShearDetails, Cracked]:
@@ -310,6 +315,6 @@ SHEAR = LimitState(
     demand_unit="N",
     linear=False,
     check=check,
-    quick=Quick(webs, utilisation),
+    quick=Quick(webs, _quick),
     lines=SHEAR_LINES,
 )
