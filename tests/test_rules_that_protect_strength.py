@@ -281,6 +281,7 @@ def test_a_bar_counts_only_as_far_as_it_is_developed() -> None:
 
     check_adequate(with_added(900.0))
     check_short(with_added(1800.0), "FlexureSagging")
+    check_short(with_added(1500.0), "LongitudinalTension")
 
 
 STEEL = Given(400.0, "test")
