@@ -115,13 +115,21 @@ def sheet_lines(found: LineValues) -> tuple[SheetLine, ...]:
         SheetLine(
             symbol=line.symbol,
             text=line.text,
-            formula=line.formula,
-            numbers=_numbers_put_in(line.formula, found.values),
+            formula=_worded(line.formula),
+            numbers=_worded(_numbers_put_in(line.formula, found.values)),
             result=_result(found.values[line.symbol], line.unit),
             clause=line.clause,
         )
         for line in found.shown
     )
+
+
+_CHOICE = re.compile(r"where\(([^,]*), ([^,]*), ([^,()]*)\)")
+
+
+def _worded(formula: str) -> str:
+    """A choice as people read it: ``where(a > b, 0.5, 1)`` as ``(0.5 if a > b else 1)``."""
+    return _CHOICE.sub(r"(\2 if \1 else \3)", formula)
 
 
 _SYMBOL = re.compile(r"[A-Za-z_][A-Za-z_0-9]*")
