@@ -284,6 +284,17 @@ def test_a_bar_counts_only_as_far_as_it_is_developed() -> None:
     check_short(with_added(1500.0), "LongitudinalTension")
 
 
+@pytest.mark.parametrize("bearing", [0.0, 100.0])
+def test_a_straight_bar_that_ends_near_the_face_anchors_little(bearing: float) -> None:
+    """11.3.9.5 asks the bottom bars for a force there; 0 or 100 mm past the face a straight 25M,
+    whose development length is some 0.8 m (12.2.3), has next to none."""
+    loads = (line("floor", 20.0),)
+    check_adequate(of(subject(loads=loads, bearing=bearing, anchor=Anchor.ANCHORED)))
+    straight = of(subject(loads=loads, bearing=bearing, anchor=Anchor.STRAIGHT))
+    check_short(straight, "LongitudinalTension")
+    check_adequate(of(subject(loads=loads, bearing=600.0, anchor=Anchor.STRAIGHT)))
+
+
 STEEL = Given(400.0, "test")
 
 
