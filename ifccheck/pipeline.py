@@ -21,6 +21,7 @@ from ifccheck.ifc.opening import OpenedModel, open_model
 from ifccheck.ifc.reader import read_model
 from ifccheck.ifc.selection import select
 from ifccheck.ifc.step_table import make_step_table
+from ifccheck.memory import uncollected
 from ifccheck.outputs import write_all
 from ifccheck.publish.report import Report
 from ifccheck.rating.batch import Batch, batches
@@ -89,6 +90,7 @@ class Survey:
     missing: Mapping[str, tuple[str, ...]]
 
 
+@uncollected()
 def rate(models: Sequence[Path], brief_path: Path, say: Say = lambda _: None) -> Run:
     """Rate every beam of the models by the brief."""
     plan = make_plan(brief_path)
@@ -138,6 +140,7 @@ def _shear_method(brief: Brief, standard: Standard) -> str:
     return method
 
 
+@uncollected()
 def read_models(models: Sequence[Path], brief: Brief | None, say: Say) -> tuple[Read, ...]:
     """Open and read the models; their names must differ, since results are named after them."""
     known: dict[str, Path] = {}
@@ -203,6 +206,7 @@ def rate_model(read: Read, matches: Matches, plan: Plan, found: Sequence[Found],
     return Rated(read, gathered, rated, report)
 
 
+@uncollected()
 def publish(
     run: Run, out: Path, only: Collection[str], say: Say = lambda _: None
 ) -> dict[str, tuple[Path, ...]]:

@@ -20,6 +20,7 @@ ALLOWED: dict[str, set[str]] = {
     "beam": set(),
     "result_sets": set(),
     "outputs": {"errors"},
+    "memory": set(),
     "ifc": RIM,
     "brief": RIM,
     "frame": RIM,

@@ -2,10 +2,8 @@
 
 from __future__ import annotations
 
-import gc
 from collections import Counter
 from collections.abc import Iterator, Mapping, Sequence
-from contextlib import contextmanager
 from dataclasses import replace
 from typing import Any, Protocol
 
@@ -53,25 +51,12 @@ def read_model(
     its schema where that is not the matter of a single beam.
     """
     try:
-        with _uncollected():
-            return _read(opened, mapping, statements)
+        return _read(opened, mapping, statements)
     except ILL_TYPED as error:
         raise ModelError(
             f"{opened.file_name}: an instance does not hold what its class asks ({error}); "
             f"{EXPORT_AGAIN}"
         ) from error
-
-
-@contextmanager
-def _uncollected() -> Iterator[None]:
-    """Keep the garbage collector from walking, over and over, all that is read and kept."""
-    enabled = gc.isenabled()
-    gc.disable()
-    try:
-        yield
-    finally:
-        if enabled:
-            gc.enable()
 
 
 def _read(opened: Opened, mapping: Mapping[str, str], statements: StepTable | None) -> Model:
