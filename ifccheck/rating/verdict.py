@@ -5,6 +5,7 @@ from __future__ import annotations
 import math
 from collections.abc import Sequence
 from dataclasses import dataclass, replace
+from functools import lru_cache
 
 from ifccheck.beam import Combination, Face, Load, Nature, Reason, Verdict
 from ifccheck.mechanics.arrays import Floats
@@ -42,40 +43,53 @@ class Places:
     def combination(self, element: int, beam: int) -> str:
         """Name of the combination of an element, without what does not act on its beam."""
         row = element // self.x.size // self.arrangements
-        return self.combinations[row].label(self.natures[beam])
+        return _label(self.combinations[row], self.natures[beam])
 
     def position(self, element: int) -> float:
         """x of an element [mm]."""
         return float(self.x[element % self.x.size])
 
 
-def limit_state_rating(
-    found: Evaluated, beam: int, places: Places, missing: str
-) -> LimitStateRating:
-    """What one limit state says of one beam (a row of the batch).
+@lru_cache(maxsize=4096)
+def _label(combination: Combination, natures: frozenset[Nature]) -> str:
+    return combination.label(natures)
+
+
+def limit_state_ratings(
+    found: Evaluated, places: Places, missing: Sequence[str]
+) -> list[LimitStateRating]:
+    """What one limit state says of every beam of the batch, in its order.
 
     A nan at any station makes the whole limit state nan, unless another station exceeds 1;
-    outside no clause's range it comes from what is ``missing``.
+    outside no clause's range it comes from what is ``missing`` of that beam.
     """
     worst, state, check = found.worst, found.state, found.shown
-    utilisation = float(worst.utilisation[beam])
-    incomplete = bool(worst.incomplete[beam]) and utilisation <= 1.0
-    element = int(worst.shown[beam])
-    demanded = incomplete or utilisation > 0.0
-    return LimitStateRating(
-        name=state.name,
-        title=state.title,
-        covers=state.covers,
-        utilisation=math.nan if incomplete else utilisation,
-        position=places.position(element) if demanded else math.nan,
-        combination=places.combination(element, beam) if demanded else "",
-        demand=float(check.demand[beam]) if demanded else 0.0,
-        resistance=float(check.resistance[beam]) if demanded else math.nan,
-        demand_unit=state.demand_unit,
-        clause=state.clause,
-        counted=True,
-        why_not=(_outside(check, beam) or missing) if incomplete else "",
+    rows = zip(
+        worst.utilisation.tolist(),
+        (worst.incomplete & (worst.utilisation <= 1.0)).tolist(),
+        worst.shown.tolist(),
+        check.demand.tolist(),
+        check.resistance.tolist(),
+        strict=True,
     )
+    return [
+        LimitStateRating(
+            name=state.name,
+            title=state.title,
+            covers=state.covers,
+            utilisation=math.nan if incomplete else utilisation,
+            position=places.position(element) if demanded else math.nan,
+            combination=places.combination(element, beam) if demanded else "",
+            demand=demand if demanded else 0.0,
+            resistance=resistance if demanded else math.nan,
+            demand_unit=state.demand_unit,
+            clause=state.clause,
+            counted=True,
+            why_not=(_outside(check, beam) or missing[beam]) if incomplete else "",
+        )
+        for beam, (utilisation, incomplete, element, demand, resistance) in enumerate(rows)
+        for demanded in [incomplete or utilisation > 0.0]
+    ]
 
 
 def _outside(check: Check, beam: int) -> str | None:
