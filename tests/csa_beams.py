@@ -17,7 +17,12 @@ def a(value) -> np.ndarray:
 WIDTH, HEIGHT, SPAN = 400.0, 600.0, 8000.0
 
 
-def beam(
+def beam(x=(4000.0,), *, method="general", **kinds) -> Prepared:
+    """A beam 400 wide; soffit bars at 60 mm, top bars 60 mm below the top."""
+    return STANDARD.prepare(*rows(x, **kinds), Options(method))
+
+
+def rows(
     x=(4000.0,),
     *,
     strength=30.0,
@@ -30,11 +35,10 @@ def beam(
     spacing=250.0,
     stirrup_yield=400.0,
     height=HEIGHT,
-    method="general",
     faces=(0.0, SPAN),
     anchor=ANCHOR_FULL,
-) -> Prepared:
-    """A beam 400 wide; soffit bars at 60 mm, top bars 60 mm below the top."""
+) -> tuple[Members, Stations]:
+    """The beam and its stations as arrays."""
     x = np.asarray(x, dtype=np.float64)
     n = x.size
     members = Members(
@@ -67,7 +71,7 @@ def beam(
         stirrup_yield=np.full(n, stirrup_yield),
         inside=(x >= faces[0] - 1e-6) & (x <= faces[1] + 1e-6),
     )
-    return STANDARD.prepare(members, stations, Options(method))
+    return members, stations
 
 
 def demand(

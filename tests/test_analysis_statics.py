@@ -13,8 +13,8 @@ from hypothesis import strategies as st
 
 from ifccheck.analysis.loads import LINE, MOMENT, POINT, LoadTable, by_beam
 from ifccheck.analysis.spans import FIXED, FREE, PINNED, SpanTable
-from ifccheck.analysis.statics import CaseEffects, case_effects
-from ifccheck.analysis.stations import Places, StationTable, make_stations
+from ifccheck.analysis.statics import CaseEffects, case_effects, join_effects
+from ifccheck.analysis.stations import Places, StationTable, insert_stations, make_stations
 
 PAIRS = (
     (PINNED, PINNED),
@@ -457,3 +457,42 @@ def test_a_span_that_cannot_stand_is_refused(pair: tuple[int, int]) -> None:
 def test_a_span_without_length_is_refused() -> None:
     with pytest.raises(ValueError, match="no length"):
         solved(span_rows([(8.0, 8.0, PINNED, PINNED)]), table([]))
+
+
+def test_stations_put_in_later_have_the_effects_of_stations_made_at_once() -> None:
+    """Effects worked out at two sets of stations and joined are those at all of them."""
+    random = np.random.default_rng(5)
+    spans = span_rows([(100.0, 6100.0, PINNED, PINNED), (0.0, 3000.0, FIXED, FREE)])
+    loads = table(
+        [
+            (0, 0, LINE, 100.0, 6100.0, 5.0, 9.0),
+            (0, 1, POINT, 2100.0, 2100.0, 40e3, 40e3),
+            (1, 0, LINE, 0.0, 3000.0, 3.0, 3.0),
+            (1, 1, MOMENT, 1200.0, 1200.0, -7e6, -7e6),
+        ]
+    )
+    beam = np.repeat([0, 1], 6)
+    x = np.concatenate([np.sort(random.uniform(101.0, 6099.0, 6)), np.linspace(1.0, 2999.0, 6)])
+    few = make_stations(spans, loads, NO_PLACES)
+    at_once = make_stations(spans, loads, Places(beam, x, np.zeros(12, np.bool_)))
+    joined, rows = insert_stations(few, beam, x)
+    for name in ("beam", "x", "side"):
+        np.testing.assert_array_equal(getattr(joined, name), getattr(at_once, name))
+    later = StationTable(beam, x, np.zeros_like(beam))
+    found = join_effects(
+        case_effects(spans, loads, few, 2), case_effects(spans, loads, later, 2), rows
+    )
+    whole = case_effects(spans, loads, at_once, 2)
+    for name in ("beam", "x", "moment", "shear", "deflection", "reactions", "end_moments"):
+        np.testing.assert_array_equal(getattr(found, name), getattr(whole, name))
+
+
+def test_moment_and_shear_are_the_same_without_deflections() -> None:
+    spans = span_rows([(0.0, 6000.0, FIXED, PINNED)])
+    loads = table([(0, 0, LINE, 500.0, 6000.0, 5.0, 9.0), (0, 0, POINT, 2e3, 2e3, 4e4, 4e4)])
+    stations = make_stations(spans, loads, NO_PLACES)
+    whole = case_effects(spans, loads, stations, 1)
+    less = case_effects(spans, loads, stations, 1, deflections=False)
+    np.testing.assert_array_equal(less.moment, whole.moment)
+    np.testing.assert_array_equal(less.shear, whole.shear)
+    assert less.deflection is None

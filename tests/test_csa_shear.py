@@ -22,7 +22,7 @@ from ifccheck.standards.csa_a23_3_14.longitudinal import LONGITUDINAL
 from ifccheck.standards.csa_a23_3_14.minimum_stirrups import MINIMUM_STIRRUPS
 from ifccheck.standards.csa_a23_3_14.shear_check import SHEAR
 from ifccheck.standards.csa_a23_3_14.stirrups import greatest_stirrup_spacing, minimum_stirrup_area
-from tests.csa_beams import HEIGHT, SPAN, WIDTH, a, beam, demand
+from tests.csa_beams import HEIGHT, SPAN, WIDTH, a, beam, demand, rows
 
 REFERENCE = Path(__file__).resolve().parents[1].parent / "shared" / "reference" / "csa.yaml"
 
@@ -322,7 +322,7 @@ def test_critical_distance_is_of_the_faces_that_have_steel():
         hogging_area=a([100.0, 100.0, 0.0, 0.0]),
     )
     assert found.tolist() == [450.0, 450.0, 500.0, 450.0]
-    assert STANDARD.critical_distance(beam()).tolist() == [DV]
+    assert STANDARD.critical_distance(*rows()).tolist() == [DV]
 
 
 # --- laws ----------------------------------------------------------------------------------

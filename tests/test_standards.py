@@ -14,7 +14,7 @@ from ifccheck.standards import discovery
 from ifccheck.standards.contract import Standard
 from ifccheck.standards.csa_a23_3_14 import STANDARD, clear_spacing
 from ifccheck.standards.discovery import all_standards, find_standard
-from tests.csa_beams import beam, demand
+from tests.csa_beams import beam, demand, rows
 
 
 def test_our_own_standard_is_found_by_its_entry_point():
@@ -109,7 +109,7 @@ def test_basis_and_notes_have_a_row_for_every_station():
     state = beam(x=(2000.0, 4000.0))
     assert all(array.shape == (2,) for array in STANDARD.basis(state).values())
     assert all(note.mask.shape == (2,) for note in STANDARD.notes(state))
-    assert STANDARD.critical_distance(state).shape == (2,)
+    assert STANDARD.critical_distance(*rows(x=(2000.0, 4000.0))).shape == (2,)
 
 
 def test_clear_spacing_from_memory():

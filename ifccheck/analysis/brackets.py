@@ -9,6 +9,7 @@ from __future__ import annotations
 
 from collections.abc import Callable, Iterator
 from dataclasses import dataclass
+from itertools import takewhile
 
 import numpy as np
 
@@ -20,7 +21,7 @@ from ifccheck.mechanics.arrays import Bools, Floats, Ints
 @dataclass(frozen=True, slots=True)
 class Brackets:
     """Sums over the loads left of each section, forces downward and moments hogging
-    positive (K, M)."""
+    positive (K, M); what was not asked for is 0."""
 
     force: Floats
     moment: Floats
@@ -44,7 +45,9 @@ class Sections:
     """All loads count, wherever they are."""
 
 
-def sum_brackets(loads: LoadTable, sections: Sections, cases: int) -> Brackets:
+def sum_brackets(
+    loads: LoadTable, sections: Sections, cases: int, integrals: bool = True
+) -> Brackets:
     """Sums over the loads of each case at every section.
 
     Parameters
@@ -55,27 +58,30 @@ def sum_brackets(loads: LoadTable, sections: Sections, cases: int) -> Brackets:
         Sections sorted by beam (M).
     cases
         Number of cases (K).
+    integrals
+        Whether the integrals of the moment are wanted.
     """
+    wanted = 4 if integrals else 2
     sums = np.zeros((4, cases * len(sections.x)))
     for kind, terms in ((LINE, _line_terms), (POINT, _point_terms), (MOMENT, _moment_terms)):
         chosen = loads.take(np.flatnonzero(loads.kind == kind))
         if chosen.beam.size:
-            _add(sums, chosen, sections, terms)
+            _add(sums, chosen, sections, terms, wanted)
     return Brackets(*(part.reshape(cases, len(sections.x)) for part in sums))
 
 
 _Terms = Callable[[LoadTable, Ints, Floats, Bools | None], Iterator[tuple[int, Floats]]]
 
 
-def _add(sums: Floats, loads: LoadTable, sections: Sections, terms: _Terms) -> None:
-    """Add what loads of one kind do at every section of their beam."""
+def _add(sums: Floats, loads: LoadTable, sections: Sections, terms: _Terms, wanted: int) -> None:
+    """Add the wanted rows of what loads of one kind do at every section of their beam."""
     load, section = _pairs(loads.beam, sections.first)
     distance = sections.x[section] - loads.start[load]
     left = None
     if not sections.whole:
         left = (distance > SAME_PLACE) | ((distance >= -SAME_PLACE) & sections.right[section])
     cell = loads.case[load] * len(sections.x) + section
-    for row, value in terms(loads, load, distance, left):
+    for row, value in takewhile(lambda term: term[0] < wanted, terms(loads, load, distance, left)):
         sums[row] += np.bincount(cell, weights=value, minlength=sums.shape[1])
 
 
@@ -101,12 +107,12 @@ def _line_terms(
     d, w, k, loaded = distance, loads.value_start[load], slope[load], length[load]
     t = loaded if left is None else np.clip(d, 0.0, loaded)
     m0 = t * (w + k * t / 2.0)
-    m1 = t * t * (w / 2.0 + k * t / 3.0)
-    m2 = t * t * t * (w / 3.0 + k * t / 4.0)
-    m3 = t * t * t * t * (w / 4.0 + k * t / 5.0)
     yield 0, m0
+    m1 = t * t * (w / 2.0 + k * t / 3.0)
     yield 1, m0 * d - m1
+    m2 = t * t * t * (w / 3.0 + k * t / 4.0)
     yield 2, ((m0 * d - 2.0 * m1) * d + m2) / 2.0
+    m3 = t * t * t * t * (w / 4.0 + k * t / 5.0)
     yield 3, (((m0 * d - 3.0 * m1) * d + 3.0 * m2) * d - m3) / 6.0
 
 

@@ -38,7 +38,7 @@ class Effects:
     than less (C, 4, N)"""
 
 
-def combine(cases: CaseEffects, factors: Floats) -> Effects:
+def combine(cases: CaseEffects, factors: Floats, arrangements: int = ARRANGEMENTS) -> Effects:
     """Extremes of moment and shear in every combination at every station.
 
     Parameters
@@ -47,11 +47,13 @@ def combine(cases: CaseEffects, factors: Floats) -> Effects:
         Effects of each case alone (K, N).
     factors
         Unfavourable and favourable factor of each case (C, K, 2).
+    arrangements
+        How many of the arrangements are wanted: 2 are those of the moments.
     """
-    shape = (len(factors), ARRANGEMENTS, cases.moment.shape[1])
+    shape = (len(factors), arrangements, cases.moment.shape[1])
     greater, lesser = factors.max(axis=2), factors.min(axis=2)
     moment, shear, upward = np.empty(shape), np.empty(shape), np.empty(shape, np.bool_)
-    for arrangement in range(ARRANGEMENTS):
+    for arrangement in range(arrangements):
         own, other, most = _roles(cases, arrangement)
         extreme, together, up = _extreme(own, other, greater, lesser, most=most)
         of_moment = arrangement in (GREATEST_MOMENT, LEAST_MOMENT)
@@ -290,8 +292,12 @@ def turning_places(effects: Effects) -> tuple[Ints, Floats]:
     found = [_turns(effects.cases, greater, lesser, sign) for sign in (1.0, -1.0)]
     beam = np.concatenate([part[0] for part in found])
     x = np.concatenate([part[1] for part in found])
-    both = np.unique(np.stack([beam, np.round(x, 3)]), axis=1)
-    return both[0].astype(np.intp), both[1]
+    x = np.round(x, 3)
+    order = np.lexsort((x, beam))
+    beam, x = beam[order], x[order]
+    new = np.ones(len(x), np.bool_)
+    new[1:] = (beam[1:] != beam[:-1]) | (x[1:] != x[:-1])
+    return beam[new], x[new]
 
 
 def _turns(cases: CaseEffects, greater: Floats, lesser: Floats, sign: float) -> tuple[Ints, Floats]:

@@ -36,8 +36,9 @@ class CaseEffects:
     """[N*mm], sagging positive (K, N)"""
     shear: Floats
     """[N], positive where the left part pushes up (K, N)"""
-    deflection: Floats
-    """Deflection times EI, downward positive, for one EI along the span [N*mm3] (K, N)"""
+    deflection: Floats | None
+    """Deflection times EI, downward positive, for one EI along the span [N*mm3] (K, N); None
+    where it was not asked for"""
     reactions: Floats
     """Upward force of the start and the end support on the beam [N] (K, B, 2)"""
     end_moments: Floats
@@ -56,7 +57,11 @@ class _Start:
 
 
 def case_effects(
-    spans: SpanTable, loads: LoadTable, stations: StationTable, cases: int
+    spans: SpanTable,
+    loads: LoadTable,
+    stations: StationTable,
+    cases: int,
+    deflections: bool = True,
 ) -> CaseEffects:
     """Moment, shear and deflection of every case at every station.
 
@@ -76,6 +81,8 @@ def case_effects(
         moment, +1 just right, 0 as -1; at the ends of a span all are just inside.
     cases
         Number of cases (K).
+    deflections
+        Whether deflections are wanted.
 
     Returns
     -------
@@ -101,8 +108,8 @@ def case_effects(
     local = _within_spans(spans, loads)
     totals = sum_brackets(local, _span_ends(spans), cases)
     start = _start_constants(spans, totals)
-    left = sum_brackets(local, _sections(spans, stations), cases)
-    moment, shear, deflection = _along(spans, stations, start, left)
+    left = sum_brackets(local, _sections(spans, stations), cases, integrals=deflections)
+    moment, shear = _along(spans, stations, start, left)
     first = stations.first_rows(len(spans.start))
     force_scale, moment_scale = _load_scales(spans, local, cases)
     return CaseEffects(
@@ -110,7 +117,7 @@ def case_effects(
         x=stations.x,
         moment=_without_noise(moment, stations, first, moment_scale),
         shear=_without_noise(shear, stations, first, force_scale),
-        deflection=deflection,
+        deflection=_deflection(spans, stations, start, left) if deflections else None,
         reactions=np.stack([start.reaction, totals.force - start.reaction], axis=-1),
         end_moments=_end_moments(spans, local, start, totals),
     )
@@ -229,16 +236,57 @@ def _by_pair(
 
 def _along(
     spans: SpanTable, stations: StationTable, start: _Start, left: Brackets
-) -> tuple[Floats, Floats, Floats]:
-    """Moment, shear and deflection at every station (K, N)."""
+) -> tuple[Floats, Floats]:
+    """Moment and shear at every station (K, N)."""
+    beam = stations.beam
+    s = stations.x - spans.start[beam]
+    reaction = start.reaction[:, beam]
+    moment = start.moment[:, beam] + reaction * s - left.moment
+    return moment, reaction - left.force
+
+
+def _deflection(spans: SpanTable, stations: StationTable, start: _Start, left: Brackets) -> Floats:
+    """Deflection at every station (K, N)."""
     beam = stations.beam
     s = stations.x - spans.start[beam]
     reaction, fixing = start.reaction[:, beam], start.moment[:, beam]
-    moment = fixing + reaction * s - left.moment
-    shear = reaction - left.force
     bent = start.slope[:, beam] - (fixing / 2.0 + reaction * s / 6.0) * s
-    deflection = start.deflection[:, beam] + bent * s + left.deflection
-    return moment, shear, deflection
+    deflection: Floats = start.deflection[:, beam] + bent * s + left.deflection
+    return deflection
+
+
+def join_effects(first: CaseEffects, second: CaseEffects, rows: Ints) -> CaseEffects:
+    """Effects of the same loads on the same beams at the stations of both.
+
+    Parameters
+    ----------
+    first, second
+        Effects at two sets of stations (N) and (Q).
+    rows
+        Order of the joint stations, sorted by beam: rows of the first, then of the second.
+    """
+    beam = np.concatenate([first.beam, second.beam])[rows]
+    stretch = np.flatnonzero(np.diff(beam, prepend=-1))
+    counts = np.diff(stretch, append=beam.size)
+
+    def joined(one: Floats, other: Floats) -> Floats:
+        effect = np.concatenate([one, other], axis=1)[:, rows]
+        size = np.abs(effect)
+        peak = np.maximum.reduceat(size, stretch, axis=1)
+        return np.where(size > np.repeat(peak * NEGLIGIBLE, counts, axis=1), effect, 0.0)
+
+    deflection = None
+    if first.deflection is not None and second.deflection is not None:
+        deflection = np.concatenate([first.deflection, second.deflection], axis=1)[:, rows]
+    return CaseEffects(
+        beam=beam,
+        x=np.concatenate([first.x, second.x])[rows],
+        moment=joined(first.moment, second.moment),
+        shear=joined(first.shear, second.shear),
+        deflection=deflection,
+        reactions=first.reactions,
+        end_moments=first.end_moments,
+    )
 
 
 def _load_scales(spans: SpanTable, loads: LoadTable, cases: int) -> tuple[Floats, Floats]:

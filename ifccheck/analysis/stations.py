@@ -131,6 +131,32 @@ def _sided(spans: SpanTable, beam: Ints, x: Floats, two_sided: Bools) -> Station
     return StationTable(beam[rows], x[rows], np.where(second, 1, side[rows]).astype(np.intp))
 
 
+def insert_stations(stations: StationTable, beam: Ints, x: Floats) -> tuple[StationTable, Ints]:
+    """Stations with more of them, at places where nothing jumps.
+
+    Parameters
+    ----------
+    stations
+        Stations (N).
+    beam, x
+        Places between them, sorted by beam and x (Q).
+
+    Returns
+    -------
+    tuple
+        All stations, and the row of each in the N stations followed by the Q places (N + Q).
+    """
+    reach = 2.0 * float(np.max(np.abs(stations.x), initial=0.0)) + 1.0
+    before = np.searchsorted(reach * stations.beam + stations.x, reach * beam + x)
+    rows = np.insert(np.arange(stations.x.size), before, stations.x.size + np.arange(x.size))
+    joined = StationTable(
+        np.concatenate([stations.beam, beam])[rows],
+        np.concatenate([stations.x, x])[rows],
+        np.concatenate([stations.side, np.zeros(x.size, np.intp)])[rows],
+    )
+    return joined, rows
+
+
 def station_rows(stations: StationTable, beam: Ints, x: Floats, *, left: bool) -> Ints:
     """Row of the station at each given place, on its left or right side where there are two.
 

@@ -19,11 +19,12 @@ from ifccheck.analysis.loads import (
     self_weight_lines,
 )
 from ifccheck.analysis.spans import FREE, SpanTable, span_table
-from ifccheck.analysis.statics import CaseEffects, case_effects
+from ifccheck.analysis.statics import CaseEffects, case_effects, join_effects
 from ifccheck.analysis.stations import (
     Places,
     StationTable,
     critical_rows,
+    insert_stations,
     join_places,
     make_stations,
     places,
@@ -47,6 +48,10 @@ from ifccheck.rating.subject import Subject
 from ifccheck.rating.utilisation import worst_of
 from ifccheck.rating.verdict import Evaluated
 from ifccheck.standards import LimitState, Note, Options, Standard
+
+
+LARGEST_BLOCK = 30_000_000
+"""Bytes; beyond 32 MB glibc does not learn from a block"""
 
 
 @dataclass(frozen=True, slots=True)
@@ -101,11 +106,22 @@ def batches(
     options: Options,
     cases: Sequence[Case],
     combinations: Sequence[Combination],
-    size: int = 200,
+    size: int = 400,
 ) -> Iterator[Batch]:
-    """Rate the subjects, a batch at a time; arrays of that size stay in the processor's cache."""
+    """Rate the subjects, a batch at a time: large enough for the cost of a call to count little."""
+    keep_memory()
     for start in range(0, len(subjects), size):
         yield rate_batch(subjects[start : start + size], standard, options, cases, combinations)
+
+
+def keep_memory() -> None:
+    """Let the allocator keep the memory of one array for the next.
+
+    Common allocators give large blocks back to the system at once, which then clears every
+    page anew: a sixth of the time of a run. They stop doing so for blocks up to the size of
+    the largest that they have seen freed; this one is never written to, and costs nothing.
+    """
+    np.empty(LARGEST_BLOCK, dtype=np.uint8)
 
 
 def rate_batch(
@@ -127,7 +143,7 @@ def rate_batch(
         Strength combinations, exclusions already worked out.
     """
     frame = _frame(subjects, cases)
-    critical = _critical_sections(subjects, frame, standard, options)
+    critical = _critical_sections(subjects, frame, standard)
     effects, stations = _effects(frame, critical, cases, combinations)
     arrays = make_station_arrays(
         stations.beam, stations.x, stations.side, frame.runs, frame.zones, frame.faces
@@ -211,9 +227,7 @@ def _frame(subjects: Sequence[Subject], cases: Sequence[Case]) -> _Frame:
     )
 
 
-def _critical_sections(
-    subjects: Sequence[Subject], frame: _Frame, standard: Standard, options: Options
-) -> Floats:
+def _critical_sections(subjects: Sequence[Subject], frame: _Frame, standard: Standard) -> Floats:
     """x of the critical section for shear at either end of each beam [mm] (B, 2).
 
     nan where nearer stations must be checked with their own shear: a free end, an end whose
@@ -225,8 +239,7 @@ def _critical_sections(
     at_faces = make_station_arrays(
         beam, frame.faces.ravel(), side, frame.runs, frame.zones, frame.faces
     )
-    prepared = standard.prepare(frame.members, at_faces, options)
-    distance = standard.critical_distance(prepared).reshape(beams, 2)
+    distance = standard.critical_distance(frame.members, at_faces).reshape(beams, 2)
     critical = frame.faces + distance * np.array([1.0, -1.0])
     direct = np.array([subject.direct for subject in subjects])
     held = np.stack([frame.spans.start_kind, frame.spans.end_kind], axis=-1) != FREE
@@ -252,18 +265,20 @@ def _effects(
 ) -> tuple[Effects, StationTable]:
     """Effects at stations that include every place where a greatest moment turns."""
     factors = factor_array(combinations, cases)
-    fixed = _fixed_places(frame, critical)
+    fixed = join_places(*_fixed_places(frame, critical))
+    stations = within(make_stations(frame.spans, frame.loads, fixed), frame.checked)
 
-    def at(extra: Places) -> tuple[Effects, StationTable]:
-        stations = within(make_stations(frame.spans, frame.loads, extra), frame.checked)
-        found: CaseEffects = case_effects(frame.spans, frame.loads, stations, len(cases))
-        return combine(found, factors), stations
+    def at(where: StationTable) -> CaseEffects:
+        return case_effects(frame.spans, frame.loads, where, len(cases), deflections=False)
 
-    turns = places(*turning_places(at(fixed)[0]), two_sided=False)
-    return at(join_places(fixed, turns))
+    found = at(stations)
+    beam, x = turning_places(combine(found, factors, arrangements=2))
+    turns = StationTable(beam, x, np.zeros_like(beam))
+    stations, rows = insert_stations(stations, beam, x)
+    return combine(join_effects(found, at(turns), rows), factors), stations
 
 
-def _fixed_places(frame: _Frame, critical: Floats) -> Places:
+def _fixed_places(frame: _Frame, critical: Floats) -> list[Places]:
     """Everything but loads at which something changes along the beams."""
     beams = np.arange(critical.shape[0])
     m, runs, zones = frame.members, frame.runs, frame.zones
@@ -279,13 +294,11 @@ def _fixed_places(frame: _Frame, critical: Floats) -> Places:
         (zones.beam, zones.start, True),
         (zones.beam, zones.end, True),
     ]
-    return join_places(
-        *(
-            places(beam[finite], x[finite], two_sided=both)
-            for beam, x, both in edges
-            for finite in [np.isfinite(x)]
-        )
-    )
+    return [
+        places(beam[finite], x[finite], two_sided=both)
+        for beam, x, both in edges
+        for finite in [np.isfinite(x)]
+    ]
 
 
 def _bases(standard: Standard, prepared: Any, elements: Elements) -> list[Any]:

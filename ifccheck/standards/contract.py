@@ -149,9 +149,9 @@ class Standard:
     """lambda for a concrete density [kg/m3]; None is normal density."""
     prepare: Callable[[Members, Stations, Options], Any]
     """Gives a Prepared."""
-    critical_distance: Callable[[Any], Floats]
-    """Distance of the critical section for shear from the face of a support, given a Prepared
-    at the faces [mm] (N)."""
+    critical_distance: Callable[[Members, Stations], Floats]
+    """Distance of the critical section for shear from the face of a support, for stations at
+    the faces [mm] (N)."""
     limit_states: tuple[LimitState, ...]
     notes: Callable[[Any], tuple[Note, ...]]
     """Remarks on a Prepared, such as minimum reinforcement."""

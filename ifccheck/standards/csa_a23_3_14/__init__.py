@@ -9,11 +9,14 @@ from ifccheck.mechanics.arrays import Floats
 from ifccheck.standards.contract import Note, Standard
 from ifccheck.standards.csa_a23_3_14 import flexure
 from ifccheck.standards.csa_a23_3_14.combinations import ACTIONS, combinations
-from ifccheck.standards.csa_a23_3_14.critical import critical_shear_depth
 from ifccheck.standards.csa_a23_3_14.longitudinal import LONGITUDINAL
 from ifccheck.standards.csa_a23_3_14.materials import density_factor
 from ifccheck.standards.csa_a23_3_14.minimum_stirrups import MINIMUM_STIRRUPS, idle_stirrups
-from ifccheck.standards.csa_a23_3_14.sections import Prepared, prepare
+from ifccheck.standards.csa_a23_3_14.sections import (
+    Prepared,
+    critical_distance,
+    prepare,
+)
 from ifccheck.standards.csa_a23_3_14.shear_check import SHEAR
 
 LEAST_CLEAR_SPACING = 30.0
@@ -51,21 +54,6 @@ def clear_spacing(diameter: float, aggregate_size: float) -> float:
     CSA A23.1-14, 6.6.5.2, as CSA A23.3-14, 7.4.1.1 asks
     """
     return max(1.4 * diameter, 1.4 * aggregate_size, LEAST_CLEAR_SPACING)
-
-
-def critical_distance(prepared: Prepared) -> Floats:
-    """Distance of the critical section for shear from the face of a support [mm] (N).
-
-    References
-    ----------
-    CSA A23.3-14, 11.3.2
-    """
-    return critical_shear_depth(
-        sagging_depth=prepared.sagging.shear_depth,
-        hogging_depth=prepared.hogging.shear_depth,
-        sagging_area=prepared.sagging.tension_area_full,
-        hogging_area=prepared.hogging.tension_area_full,
-    )
 
 
 def notes(prepared: Prepared) -> tuple[Note, ...]:

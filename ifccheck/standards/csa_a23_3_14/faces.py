@@ -38,7 +38,7 @@ class _Dataclass(Protocol):
 State = TypeVar("State", bound=_Dataclass)
 
 
-def take_rows(state: State, rows: Ints) -> State:
+def take_rows(state: State, rows: Ints | slice) -> State:
     """The same state at the given rows of the first axis, nested states included."""
     taken: dict[str, Any] = {}
     for item in fields(state):
@@ -102,7 +102,7 @@ class FaceState:
     bars_outside: Bools
     """A bar lies above or below the concrete: Mr is nan"""
 
-    def take(self, rows: Ints) -> FaceState:
+    def take(self, rows: Ints | slice) -> FaceState:
         """The same at the given stations; rows may repeat."""
         return take_rows(self, rows)
 
@@ -181,8 +181,52 @@ class SectionState:
         return outside
 
 
-def sagging_face(section: SectionState) -> FaceState:
-    """The soffit in tension, the flange in compression."""
+@dataclass(frozen=True, slots=True)
+class TensionSteel:
+    """The flexural tension steel of sections with one face in tension; one row each."""
+
+    side: Bools
+    """Layers on the tension side"""
+    full: Floats
+    """Area of each such layer that reaches the section [mm2]"""
+    developed: Floats
+    """The same, as far as it is developed [mm2]"""
+    effective_depth: Floats
+    """d [mm]; nan where there is none"""
+    shear_depth: Floats
+    """dv [mm]"""
+
+
+def soffit_steel(section: SectionState) -> TensionSteel:
+    """The soffit in tension."""
+    return _tension_steel(section, _depth_from_top(section))
+
+
+def top_steel(section: SectionState) -> TensionSteel:
+    """The top in tension."""
+    return _tension_steel(section, _depth_from_soffit(section))
+
+
+def _depth_from_top(section: SectionState) -> Floats:
+    return top_of(section.strips)[:, None] - section.bars.height
+
+
+def _depth_from_soffit(section: SectionState) -> Floats:
+    return section.bars.height - bottom_of(section.strips)[:, None]
+
+
+def _tension_steel(section: SectionState, layer_depth: Floats) -> TensionSteel:
+    h = section.depth
+    side = tension_side(layer_depth, section.bars.area, h)
+    full = np.where(side & section.present, section.bars.area, 0.0)
+    developed = full * section.pulled
+    d = centroid_depth(layer_depth, developed)
+    return TensionSteel(side, full, developed, d, np.fmax(0.9 * d, 0.72 * h))
+
+
+def sagging_and_hogging(section: SectionState) -> tuple[FaceState, FaceState]:
+    """The soffit in tension with the flange in compression, and the top in tension, where only
+    the flange's steel counts; solved together."""
     compressed = flange.effective_strips(
         section.strips,
         left=section.overhang_left,
@@ -190,33 +234,30 @@ def sagging_face(section: SectionState) -> FaceState:
         thickness=section.flange_thickness,
         span=section.span,
     )
-    layer_depth = top_of(section.strips)[:, None] - section.bars.height
-    return _face(section, from_soffit(flipped(compressed)), layer_depth, np.inf)
-
-
-def hogging_face(section: SectionState) -> FaceState:
-    """The top in tension, where only the flange's steel counts."""
     one, both = section.overhang_left > 0.0, section.overhang_right > 0.0
-    tension_width_limit = np.select([one & both, one | both], [2.5, 1.5], np.inf)
-    layer_depth = section.bars.height - bottom_of(section.strips)[:, None]
-    return _face(section, from_soffit(section.strips), layer_depth, tension_width_limit)
+    widest = np.select([one & both, one | both], [2.5, 1.5], np.inf)
+    faces = _face(
+        take_rows(section, np.tile(np.arange(len(widest)), 2)),
+        np.concatenate([from_soffit(flipped(compressed)), from_soffit(section.strips)]),
+        np.concatenate([_depth_from_top(section), _depth_from_soffit(section)]),
+        np.concatenate([np.full_like(widest, np.inf), widest]),
+    )
+    return faces.take(slice(0, len(widest))), faces.take(slice(len(widest), None))
 
 
 def _face(
-    section: SectionState, strips: Floats, layer_depth: Floats, tension_width_limit: Floats | float
+    section: SectionState, strips: Floats, layer_depth: Floats, tension_width_limit: Floats
 ) -> FaceState:
     """One face in tension; strips and depths from the compression face.
 
     ``tension_width_limit`` is the greatest bt/bw that 10.5.1.2 asks for.
     """
     h, bars = section.depth, section.bars
-    side = tension_side(layer_depth, bars.area, h)
-    full = np.where(side & section.present, bars.area, 0.0)
-    developed = full * section.pulled
+    steel = _tension_steel(section, layer_depth)
+    full, developed, d = steel.full, steel.developed, steel.effective_depth
     tension_yield = np.where(full > 0.0, bars.yield_strength, 0.0).max(axis=1, initial=0.0)
-    d = centroid_depth(layer_depth, developed)
     bw = least_width(strips, np.zeros_like(h), np.where(np.isnan(d), h, d))
-    s = _strength(section, strips, layer_depth, side)
+    s = _strength(section, strips, layer_depth, steel.side)
     tension_area = developed.sum(axis=1)
     beyond_ductility: Bools = np.greater(s.neutral_axis_depth, ductility_limit(tension_yield) * d)
     outside: Bools = np.logical_or.reduce(
@@ -232,7 +273,7 @@ def _face(
     return FaceState(
         moment_resistance=np.where(outside, np.nan, s.moment),
         effective_depth=d,
-        shear_depth=np.fmax(0.9 * d, 0.72 * h),
+        shear_depth=steel.shear_depth,
         web_width=bw,
         tension_area=tension_area,
         tension_area_full=full.sum(axis=1),

@@ -19,14 +19,19 @@ from ifccheck.mechanics.arrays import (
 from ifccheck.mechanics.width_profile import bottom_of, top_of
 from ifccheck.standards.contract import Options
 from ifccheck.standards.csa_a23_3_14 import development, materials
-from ifccheck.standards.csa_a23_3_14.critical import Surroundings, surroundings
+from ifccheck.standards.csa_a23_3_14.critical import (
+    Surroundings,
+    critical_shear_depth,
+    surroundings,
+)
 from ifccheck.standards.csa_a23_3_14.faces import (
     FaceState,
     Layers,
     SectionState,
-    hogging_face,
-    sagging_face,
+    sagging_and_hogging,
+    soffit_steel,
     take_rows,
+    top_steel,
 )
 
 AT_ONCE = 16384
@@ -123,6 +128,32 @@ def prepare(members: Members, stations: Stations, options: Options) -> Prepared:
     )
 
 
+def critical_distance(members: Members, stations: Stations) -> Floats:
+    """Distance of the critical section for shear from the face of a support [mm] (N).
+
+    Parameters
+    ----------
+    members, stations
+        The beams, and stations at the faces of their supports.
+
+    References
+    ----------
+    CSA A23.3-14, 11.3.2
+    """
+    bars, distance = _layers(members), np.empty(stations.x.shape)
+    for rows, layers, strips in _groups(members, stations):
+        section, state = _distinct(members, bars, stations, rows, layers, strips)
+        soffit, top = soffit_steel(section), top_steel(section)
+        depth = critical_shear_depth(
+            sagging_depth=soffit.shear_depth,
+            hogging_depth=top.shear_depth,
+            sagging_area=soffit.full.sum(axis=1),
+            hogging_area=top.full.sum(axis=1),
+        )
+        distance[rows] = depth[state]
+    return distance
+
+
 def _surroundings(
     stations: Stations, sagging: FaceState, hogging: FaceState, options: Options
 ) -> Surroundings:
@@ -193,14 +224,16 @@ def _faces(
     members: Members, bars: Layers, stations: Stations
 ) -> tuple[FaceState, FaceState, Floats]:
     """Both faces and the greatest fy at all stations."""
-    sagging, hogging, steel_yield = [], [], []
+    sagging: list[FaceState] = []
+    hogging: list[FaceState] = []
+    steel_yield = []
     index, known = np.empty_like(stations.beam), 0
     for rows, layers, strips in _groups(members, stations):
         section, state = _distinct(members, bars, stations, rows, layers, strips)
         index[rows] = known + state
         known += len(section.strength)
-        sagging.append(sagging_face(section))
-        hogging.append(hogging_face(section))
+        for found, face in zip((sagging, hogging), sagging_and_hogging(section), strict=True):
+            found.append(face)
         steel_yield.append(section.steel_yield)
     return (
         _join(sagging).take(index),
