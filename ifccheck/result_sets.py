@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
-from typing import Literal
+from typing import Literal, NamedTuple
 
 Measure = Literal[
     "label", "text", "identifier", "real", "logical", "length", "force", "line_force",
@@ -11,9 +11,11 @@ Measure = Literal[
 ]  # fmt: skip
 
 
-@dataclass(frozen=True, slots=True)
-class ResultProperty:
-    """One property of a result set, in N, mm, MPa; ``logical`` takes True, False or None."""
+class ResultProperty(NamedTuple):
+    """One property of a result set, in N, mm, MPa; ``logical`` takes True, False or None.
+
+    A named tuple, as there are tens of thousands that are looked up by all their fields.
+    """
 
     name: str
     measure: Measure

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-import base64
+import binascii
 import hashlib
 import uuid
 
@@ -40,5 +40,6 @@ def _derived(name: str) -> str:
     bits = bytearray(hashlib.sha1(_NAMESPACE + name.encode(), usedforsecurity=False).digest()[:16])
     bits[6] = bits[6] & 0x0F | 0x50
     bits[8] = bits[8] & 0x3F | 0x80
-    digits = base64.b64encode(b"\0\0" + bits)[2:]  # 16 more zero bits make 24 digits of 6 bits
+    # 16 more zero bits make 24 digits of 6 bits
+    digits = binascii.b2a_base64(b"\0\0" + bits, newline=False)[2:]
     return digits.translate(_TO_IFC_DIGITS).decode()

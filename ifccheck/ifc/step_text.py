@@ -3,14 +3,12 @@
 from __future__ import annotations
 
 import re
-from functools import lru_cache
 
 _SPECIAL = re.compile(r"['\\]|[^ -~]+")
 _NEVER_WRITTEN = re.compile("[\0\ud800-\udfff]")
 """Readers end a text at a zero, and half a character no file may hold."""
 
 
-@lru_cache(maxsize=4096)
 def step_string(text: str) -> str:
     r"""Return a text in apostrophes, with everything outside plain ASCII escaped.
 

@@ -3,7 +3,8 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Callable, Iterator, Mapping, Sequence
+from collections.abc import Callable, Iterable, Iterator, Mapping, Sequence
+from itertools import chain
 from typing import Any
 
 import numpy as np
@@ -31,16 +32,19 @@ _MEASURE_TYPES: Mapping[Measure, str] = {
 
 def rated_bytes(opened: OpenedModel, sets: Sequence[ResultSet]) -> bytes:
     """Return the model with result sets added; without any, its own bytes."""
-    _require_sound(opened, sets)
-    written = [(result, kept) for result in sets if (kept := _writable(result))]
-    if not written:
+    distinct = dict.fromkeys(chain.from_iterable(result.properties for result in sets))
+    _require_sound(opened, sets, distinct)
+    writable = {item for item in distinct if _has_value(item)}
+    if not writable:
         return opened.source
     lines = _Lines(fresh_ids(opened.scan.ids))
-    measures = {item.measure for _, kept in written for item in kept}
-    units = result_units(opened.file, measures, lines.add)
+    units = result_units(opened.file, {item.measure for item in writable}, lines.add)
     owner = _owner_history(opened, lines.add)
-    for result, kept in written:
-        _add_set(lines, result, kept, units, owner)
+    values = _Values(lines, units)
+    for result in sets:
+        kept = [item for item in result.properties if item in writable]
+        if kept:
+            _add_set(lines, result, values.references(kept), owner)
     return with_block(opened.source, opened.scan, opened.sha256, lines.written)
 
 
@@ -65,7 +69,6 @@ class _Lines:
 
     def __init__(self, numbers: Iterator[int]) -> None:
         self._numbers = numbers
-        self._values: dict[ResultProperty, int] = {}
         self.written: list[str] = []
 
     def add(self, instance: str) -> int:
@@ -73,19 +76,35 @@ class _Lines:
         self.written.append(f"#{number}={instance};")
         return number
 
-    def value(self, item: ResultProperty, units: Mapping[Measure, UnitEntity]) -> int:
-        """Number of a property; beams that have the same one share it."""
-        if item not in self._values:
-            self._values[item] = self.add(_single_value(item, units))
-        return self._values[item]
 
+class _Values:
+    """Properties to be added; beams that have the same one share it."""
 
-def _writable(result: ResultSet) -> tuple[ResultProperty, ...]:
-    """Return the properties that have a value; nan and infinity are none."""
-    return tuple(item for item in result.properties if _has_value(item))
+    def __init__(self, lines: _Lines, units: Mapping[Measure, UnitEntity]) -> None:
+        self._lines = lines
+        self._units = units
+        self._references: dict[ResultProperty, str] = {}
+        self._names: dict[str, str] = {}
+
+    def references(self, items: Sequence[ResultProperty]) -> str:
+        """The properties as a set lists them, new ones added."""
+        known = self._references
+        for item in items:
+            if item not in known:
+                known[item] = f"#{self._lines.add(self._instance(item))}"
+        return ",".join([known[item] for item in items])
+
+    def _instance(self, item: ResultProperty) -> str:
+        if item.name not in self._names:
+            self._names[item.name] = step_string(item.name)
+        unit = self._units.get(item.measure)
+        value = f"{_MEASURE_TYPES[item.measure]}({_spelled(item, unit)})"
+        reference = "$" if unit is None else f"#{unit.step_id}"
+        return f"IFCPROPERTYSINGLEVALUE({self._names[item.name]},$,{value},{reference})"
 
 
 def _has_value(item: ResultProperty) -> bool:
+    """Whether a property has a value; nan and infinity are none."""
     if item.measure == "logical":
         return True
     if isinstance(item.value, str) or item.value is None:
@@ -93,30 +112,14 @@ def _has_value(item: ResultProperty) -> bool:
     return math.isfinite(item.value)
 
 
-def _add_set(
-    lines: _Lines,
-    result: ResultSet,
-    kept: Sequence[ResultProperty],
-    units: Mapping[Measure, UnitEntity],
-    owner: str,
-) -> None:
-    values = ",".join(f"#{lines.value(item, units)}" for item in kept)
+def _add_set(lines: _Lines, result: ResultSet, references: str, owner: str) -> None:
     identity = (result.guid, result.ordinal, result.name)
-    number = lines.add(
-        f"IFCPROPERTYSET('{set_guid(*identity)}',{owner},{step_string(result.name)},$,({values}))"
-    )
+    name = step_string(result.name)
+    number = lines.add(f"IFCPROPERTYSET('{set_guid(*identity)}',{owner},{name},$,({references}))")
     lines.add(
         f"IFCRELDEFINESBYPROPERTIES('{relation_guid(*identity)}',{owner},$,$,"
         f"(#{result.step_id}),#{number})"
     )
-
-
-def _single_value(item: ResultProperty, units: Mapping[Measure, UnitEntity]) -> str:
-    unit = units.get(item.measure)
-    spelled = _spelled(item, unit)
-    reference = "$" if unit is None else f"#{unit.step_id}"
-    name = step_string(item.name)
-    return f"IFCPROPERTYSINGLEVALUE({name},$,{_MEASURE_TYPES[item.measure]}({spelled}),{reference})"
 
 
 def _spelled(item: ResultProperty, unit: UnitEntity | None) -> str:
@@ -132,7 +135,9 @@ def _spelled(item: ResultProperty, unit: UnitEntity | None) -> str:
     raise TypeError(f"property {item.name}: {value!r} is not a {item.measure}")
 
 
-def _require_sound(opened: OpenedModel, sets: Sequence[ResultSet]) -> None:
+def _require_sound(
+    opened: OpenedModel, sets: Sequence[ResultSet], distinct: Iterable[ResultProperty]
+) -> None:
     """Refuse sets that would make the model unsound or could not be taken away again."""
     seen: set[tuple[str, int, str]] = set()
     for result in sets:
@@ -142,7 +147,10 @@ def _require_sound(opened: OpenedModel, sets: Sequence[ResultSet]) -> None:
         seen.add(identity)
         if result.name not in RESULT_SET_NAMES:
             raise ValueError(f"{result.name} is not a result set")
-        _require_properties(result)
+        if len({item.name for item in result.properties}) != len(result.properties):
+            raise ValueError(f"{result.name} of {result.guid} gives a property twice")
+    for item in distinct:
+        _require_short(item)
     for step_id, guid in {result.step_id: result.guid for result in sets}.items():
         if _guid_at(opened.file, step_id) != guid:
             raise ValueError(f"#{step_id} is not the beam {guid}")
@@ -155,19 +163,10 @@ def _guid_at(file: Any, step_id: int) -> str | None:
         return None
 
 
-def _require_properties(result: ResultSet) -> None:
-    names = [item.name for item in result.properties]
-    if len(set(names)) != len(names):
-        raise ValueError(f"{result.name} of {result.guid} gives a property twice")
-    for item in result.properties:
-        texts = [item.name]
-        if item.measure in ("label", "identifier") and isinstance(item.value, str):
-            texts.append(item.value)
-        if max(map(len, texts)) > LONGEST_LABEL:
-            raise ValueError(
-                f"{result.name}.{item.name[:40]} of {result.guid} is longer than "
-                f"{LONGEST_LABEL} characters"
-            )
+def _require_short(item: ResultProperty) -> None:
+    is_label = item.measure in ("label", "identifier") and isinstance(item.value, str)
+    if max(len(item.name), len(str(item.value)) if is_label else 0) > LONGEST_LABEL:
+        raise ValueError(f"the property {item.name[:40]} is longer than {LONGEST_LABEL} characters")
 
 
 def _owner_history(opened: OpenedModel, add: Callable[[str], int]) -> str:

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import hashlib
 import math
-from collections.abc import Iterable, Iterator
+from collections.abc import Iterable
 from typing import cast, get_args
 
 from ifccheck.beam import Verdict
@@ -29,10 +29,10 @@ def result_sets(report: Report) -> tuple[ResultSet, ...]:
     """
     identifier = basis_identifier(report)
     return tuple(
-        ResultSet(beam.step_id, beam.guid, beam.ordinal, name, found)
+        ResultSet(beam.step_id, beam.guid, beam.ordinal, name, tuple(properties))
         for beam in report.model.beams
         for name, properties in _sets(report.ratings[beam.key], report, identifier)
-        if (found := tuple(properties))
+        if properties
     )
 
 
@@ -50,7 +50,7 @@ def basis_identifier(report: Report) -> str:
 
 def _sets(
     rating: Rating, report: Report, identifier: str
-) -> tuple[tuple[str, Iterable[ResultProperty]], ...]:
+) -> tuple[tuple[str, list[ResultProperty]], ...]:
     return (
         ("BeamRating_Result", _result(rating, report, identifier)),
         ("BeamRating_LimitStates", _limit_states(rating)),
@@ -59,45 +59,57 @@ def _sets(
     )
 
 
-def _given(name: str, measure: Measure, value: Value) -> Iterator[ResultProperty]:
-    """The property, unless its value is not finite or an empty text; long labels in two."""
-    if isinstance(value, str):
-        yield from _words(name, measure, value)
-    elif isinstance(value, bool) or value is None:
-        yield ResultProperty(name, measure, value)
-    elif math.isfinite(value):
-        yield ResultProperty(name, measure, float(value))
+def _given(rows: Iterable[tuple[str, Measure, Value]]) -> list[ResultProperty]:
+    """The properties whose value is finite and no empty text; long labels in two."""
+    given: list[ResultProperty] = []
+    for name, measure, value in rows:
+        if isinstance(value, str):
+            if len(value) > LONGEST_LABEL and measure != "text":
+                given += _cut(name, measure, value)
+            elif value:
+                given.append(ResultProperty(name, measure, value))
+        elif isinstance(value, bool) or value is None:
+            given.append(ResultProperty(name, measure, value))
+        elif math.isfinite(value):
+            given.append(ResultProperty(name, measure, float(value)))
+    return given
 
 
-def _words(name: str, measure: Measure, text: str) -> Iterator[ResultProperty]:
-    if not text:
-        return
-    if measure == "text" or len(text) <= LONGEST_LABEL:
-        yield ResultProperty(name, measure, text)
-        return
-    yield ResultProperty(name, measure, f"{text[: LONGEST_LABEL - 1]}…")
-    yield ResultProperty(f"{name}Text", "text", text)
+def _cut(name: str, measure: Measure, text: str) -> tuple[ResultProperty, ResultProperty]:
+    return (
+        ResultProperty(name, measure, f"{text[: LONGEST_LABEL - 1]}…"),
+        ResultProperty(f"{name}Text", "text", text),
+    )
 
 
-def _result(rating: Rating, report: Report, identifier: str) -> Iterator[ResultProperty]:
-    yield from _given("Verdict", "label", str(rating.verdict))
-    yield from _given("Adequate", "logical", ADEQUATE[rating.verdict])
-    yield from _given("Utilisation", "real", rating.utilisation)
+def _result(rating: Rating, report: Report, identifier: str) -> list[ResultProperty]:
+    rows: list[tuple[str, Measure, Value]] = [
+        ("Verdict", "label", str(rating.verdict)),
+        ("Adequate", "logical", ADEQUATE[rating.verdict]),
+        ("Utilisation", "real", rating.utilisation),
+    ]
     if math.isinf(rating.utilisation):
-        yield from _given("UtilisationState", "label", "no resistance where some is demanded")
+        rows += [("UtilisationState", "label", "no resistance where some is demanded")]
     if worst := rating.governing:
-        yield from _given("GoverningLimitState", "label", worst.title)
-        yield from _given("GoverningClause", "label", worst.clause)
-        yield from _given("GoverningCombination", "label", worst.combination)
-        yield from _given("GoverningPosition", "length", worst.position)
+        rows += [
+            ("GoverningLimitState", "label", worst.title),
+            ("GoverningClause", "label", worst.clause),
+            ("GoverningCombination", "label", worst.combination),
+            ("GoverningPosition", "length", worst.position),
+        ]
     if least := _least(rating.safe_loads):
-        yield from _given("LeastRatingFactor", "real", least.factor)
-        yield from _given("LeastRatedCase", "label", least.case)
-    yield from _given("LimitStatesChecked", "text", ", ".join(rating.checked))
-    yield from _given("LimitStatesNotChecked", "text", ", ".join(rating.not_checked))
-    yield from _given("Reason", "text", "; ".join(reason.text for reason in rating.reasons))
-    yield from _given("Standard", "label", report.standard_name)
-    yield from _given("Basis", "identifier", identifier)
+        rows += [
+            ("LeastRatingFactor", "real", least.factor),
+            ("LeastRatedCase", "label", least.case),
+        ]
+    rows += [
+        ("LimitStatesChecked", "text", ", ".join(rating.checked)),
+        ("LimitStatesNotChecked", "text", ", ".join(rating.not_checked)),
+        ("Reason", "text", "; ".join(reason.text for reason in rating.reasons)),
+        ("Standard", "label", report.standard_name),
+        ("Basis", "identifier", identifier),
+    ]
+    return _given(rows)
 
 
 def _least(safe_loads: tuple[SafeLoad, ...]) -> SafeLoad | None:
@@ -108,29 +120,33 @@ def _least(safe_loads: tuple[SafeLoad, ...]) -> SafeLoad | None:
     return least if math.isfinite(least.factor) else None
 
 
-def _limit_states(rating: Rating) -> Iterator[ResultProperty]:
-    for state in rating.limit_states:
-        yield from _given(state.name, "real", state.utilisation)
+def _limit_states(rating: Rating) -> list[ResultProperty]:
+    return _given([(state.name, "real", state.utilisation) for state in rating.limit_states])
 
 
-def _safe_loads(safe_loads: tuple[SafeLoad, ...]) -> Iterator[ResultProperty]:
+def _safe_loads(safe_loads: tuple[SafeLoad, ...]) -> list[ResultProperty]:
+    rows: list[tuple[str, Measure, Value]] = []
     for safe in safe_loads:
-        yield from _given(f"{safe.case} factor", "real", safe.factor)
+        rows.append((f"{safe.case} factor", "real", safe.factor))
+        name = f"{safe.case} safe load"
         if math.isfinite(safe.single_value) and safe.single_kind:
             measure: Measure = "force" if safe.single_kind == "point" else "line_force"
-            yield from _given(f"{safe.case} safe load", measure, safe.single_value)
+            rows.append((name, measure, safe.single_value))
         else:
-            yield from _given(f"{safe.case} safe load", "text", safe.text)
+            rows.append((name, "text", safe.text))
+    return _given(rows)
 
 
-def _basis(items: tuple[BasisItem, ...]) -> Iterator[ResultProperty]:
+def _basis(items: tuple[BasisItem, ...]) -> list[ResultProperty]:
     used: dict[str, int] = {}
+    rows: list[tuple[str, Measure, Value]] = []
     for item in items:
-        used[item.name] = used.get(item.name, 0) + 1
-        name = item.name if used[item.name] == 1 else f"{item.name}{used[item.name]}"
+        used[item.name] = count = used.get(item.name, 0) + 1
+        name = item.name if count == 1 else f"{item.name}{count}"
         source = f"assumed: {item.source}" if item.assumed else item.source
-        yield from _given(name, _measure(item), item.value)
-        yield from _given(f"{name}Source", "label", source)
+        rows.append((name, _measure(item), item.value))
+        rows.append((f"{name}Source", "label", source))
+    return _given(rows)
 
 
 def _measure(item: BasisItem) -> Measure:
