@@ -50,14 +50,14 @@ def nearest_neighbour(y: Floats, z: Floats, start: Floats, end: Floats) -> Float
     Parameters
     ----------
     y, z
-        Bar centres [mm] (P).
+        Bar centres of beams that have as many bars [mm] (..., P).
     start, end
-        Where each bar starts and ends along the axis [mm] (P).
+        Where each bar starts and ends along the axis [mm] (..., P).
 
     Returns
     -------
     Floats
-        [mm] (P); inf for a bar on its own.
+        [mm] (..., P); inf for a bar on its own.
 
     Examples
     --------
@@ -65,7 +65,7 @@ def nearest_neighbour(y: Floats, z: Floats, start: Floats, end: Floats) -> Float
     >>> nearest_neighbour(y, z, np.zeros(3), np.full(3, 5000.0))
     array([ 80.,  80., 120.])
     """
-    distance = np.hypot(y[:, None] - y, z[:, None] - z)
-    beside = (start[:, None] < end) & (start < end[:, None])
-    np.fill_diagonal(beside, val=False)
-    return np.asarray(np.where(beside, distance, np.inf).min(axis=1, initial=np.inf))
+    distance = np.hypot(y[..., :, None] - y[..., None, :], z[..., :, None] - z[..., None, :])
+    beside = (start[..., :, None] < end[..., None, :]) & (start[..., None, :] < end[..., :, None])
+    beside &= ~np.eye(y.shape[-1], dtype=np.bool_)
+    return np.asarray(np.where(beside, distance, np.inf).min(axis=-1, initial=np.inf))

@@ -2,14 +2,16 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
+from functools import lru_cache
+from typing import Any
 
 import numpy as np
 
 from ifccheck.analysis.spans import FREE, SpanTable
 from ifccheck.analysis.stations import SAME_PLACE, StationTable
-from ifccheck.beam import Anchor, Bars, Outline
+from ifccheck.beam import Anchor, Outline
 from ifccheck.mechanics.arrays import (
     ANCHOR_FULL,
     ANCHOR_HOOK,
@@ -33,10 +35,6 @@ _ANCHOR = {
     Anchor.HOOK: ANCHOR_HOOK,
     Anchor.ANCHORED: ANCHOR_FULL,
 }
-_LAYER_FIELDS = (
-    "height", "area", "bar_area", "diameter", "yield", "start", "end", "cover_distance",
-)  # fmt: skip
-_LAYER_PADDING = {"bar_area": 1.0, "diameter": 1.0, "yield": 400.0}
 
 
 @dataclass(frozen=True, slots=True)
@@ -65,6 +63,25 @@ class StirrupTable:
     yield_strength: Floats
 
 
+@dataclass(frozen=True, slots=True)
+class Profile:
+    """What is measured of an outline."""
+
+    strips: Floats
+    overhangs: tuple[float, float, float]
+    """To the left, to the right, and the thickness of that flange [mm]"""
+    area: float
+    """[mm2]"""
+
+
+@lru_cache(maxsize=4096)  # few outlines make most buildings
+def profile_of(outline: Outline) -> Profile:
+    """Measure an outline."""
+    strips = strips_of(outline.rings)
+    area = float(np.sum((strips[:, 1] - strips[:, 0]) * (strips[:, 2] + strips[:, 3]) / 2.0))
+    return Profile(strips, overhangs(outline.rings), area)
+
+
 def run_table(subjects: Sequence[Subject]) -> tuple[RunTable, tuple[Outline, ...]]:
     """Number the distinct outlines and list where each beam has which."""
     rows: dict[Outline, int] = {}
@@ -75,74 +92,104 @@ def run_table(subjects: Sequence[Subject]) -> tuple[RunTable, tuple[Outline, ...
     ]
     beam, start, end, section = (np.array(column) for column in zip(*table, strict=True))
     outlines = tuple(rows)
-    areas = np.array([_area(outline) for outline in outlines])
+    areas = np.array([profile_of(outline).area for outline in outlines])
     return RunTable(beam, start, end, section, areas[section]), outlines
-
-
-def _area(outline: Outline) -> float:
-    strips = strips_of(outline.rings)
-    return float(np.sum((strips[:, 1] - strips[:, 0]) * (strips[:, 2] + strips[:, 3]) / 2.0))
 
 
 def members_of(subjects: Sequence[Subject], outlines: Sequence[Outline]) -> Members:
     """The beams as arrays, one row each."""
-    layers = [_layers(subject) for subject in subjects]
-    deepest = max(1, max(layer["height"].size for layer in layers))
-    packed = {name: _padded(layers, name, deepest) for name in _LAYER_FIELDS}
-    flanges = np.array([overhangs(outline.rings) for outline in outlines])
+    profiles = [profile_of(outline) for outline in outlines]
+    flanges = np.array([profile.overhangs for profile in profiles])
     return Members(
         concrete_strength=np.array([s.concrete_strength.value for s in subjects]),
         density_factor=np.array([s.density_factor.value for s in subjects]),
         aggregate_size=np.array([s.aggregate_size.value for s in subjects]),
         span=np.array([s.span.end - s.span.start for s in subjects]),
-        **{f"layer_{name}": packed[name] for name in _LAYER_FIELDS},
-        layer_start_anchor=_padded(layers, "start_anchor", deepest).astype(np.intp),
-        layer_end_anchor=_padded(layers, "end_anchor", deepest).astype(np.intp),
-        strips=pack_strips([strips_of(outline.rings) for outline in outlines]),
+        **_layers(subjects),
+        strips=pack_strips([profile.strips for profile in profiles]),
         overhang_left=flanges[:, 0],
         overhang_right=flanges[:, 1],
         flange_thickness=flanges[:, 2],
     )
 
 
-def _layers(subject: Subject) -> dict[str, Floats]:
-    bars = subject.bars
+def _layers(subjects: Sequence[Subject]) -> dict[str, Any]:
+    """The layers of all beams by the names of Members, padded (B, L)."""
+    bars = [bar for subject in subjects for bar in subject.bars]
+    counts = np.array([len(subject.bars) for subject in subjects])
+    beam = np.repeat(np.arange(counts.size), counts)
+    slot = np.arange(beam.size) - np.repeat(np.cumsum(counts) - counts, counts)
+    shape = (counts.size, max(1, int(counts.max())))
+
+    def packed(values: Iterable[float], padding: float = 0.0) -> Floats:
+        table = np.full(shape, padding)
+        table[beam, slot] = _column(values)
+        return table
+
+    anchors = [
+        packed(_ANCHOR[end] for end in ends).astype(np.intp)
+        for ends in ([bar.start_anchor for bar in bars], [bar.end_anchor for bar in bars])
+    ]
+
     return {
-        "height": np.array([b.z for b in bars], dtype=np.float64),
-        "area": np.array([b.count * b.area for b in bars], dtype=np.float64),
-        "bar_area": np.array([b.area for b in bars], dtype=np.float64),
-        "diameter": np.array([b.diameter for b in bars], dtype=np.float64),
-        "yield": np.array([g.value for g in subject.bar_yield], dtype=np.float64),
-        "start": np.array([b.start for b in bars], dtype=np.float64),
-        "end": np.array([b.end for b in bars], dtype=np.float64),
-        "start_anchor": np.array([_ANCHOR[b.start_anchor] for b in bars], dtype=np.float64),
-        "end_anchor": np.array([_ANCHOR[b.end_anchor] for b in bars], dtype=np.float64),
-        "cover_distance": cover_distances(bars, subject.beam.runs[0].outline),
+        "layer_height": packed(bar.z for bar in bars),
+        "layer_area": packed(bar.count * bar.area for bar in bars),
+        "layer_bar_area": packed((bar.area for bar in bars), 1.0),
+        "layer_diameter": packed((bar.diameter for bar in bars), 1.0),
+        "layer_yield": packed((g.value for s in subjects for g in s.bar_yield), 400.0),
+        "layer_start": packed(bar.start for bar in bars),
+        "layer_end": packed(bar.end for bar in bars),
+        "layer_start_anchor": anchors[0],
+        "layer_end_anchor": anchors[1],
+        "layer_cover_distance": packed(cover_distances(subjects)),
     }
 
 
-def _padded(layers: Sequence[dict[str, Floats]], name: str, width: int) -> Floats:
-    packed = np.full((len(layers), width), _LAYER_PADDING.get(name, 0.0))
-    for row, layer in enumerate(layers):
-        packed[row, : layer[name].size] = layer[name]
-    return packed
+def _column(values: Iterable[float]) -> Floats:
+    return np.fromiter(values, dtype=np.float64)
 
 
-def cover_distances(bars: Sequence[Bars], outline: Outline) -> Floats:
-    """dcs of each layer: the least over its bars of the distance of the bar's centre from the
-    concrete surface and of 2/3 of the centre spacing (CSA A23.3 and others) [mm] (L)."""
-    if not bars:
-        return np.zeros(0)
-    layer = np.repeat(np.arange(len(bars)), [len(b.ys) for b in bars])
-    y = np.array([place for b in bars for place in b.ys], dtype=np.float64)
-    z = np.array([b.z for b in bars], dtype=np.float64)[layer]
-    start = np.array([b.start for b in bars], dtype=np.float64)[layer]
-    end = np.array([b.end for b in bars], dtype=np.float64)[layer]
-    spacing = nearest_neighbour(y, z, start, end)
-    nearest = np.minimum(distance_to_surface(y, z, outline.rings), spacing * 2.0 / 3.0)
-    least = np.full(len(bars), np.inf)
+def cover_distances(subjects: Sequence[Subject]) -> Floats:
+    """dcs of each layer of all beams, one after another.
+
+    The least over its bars of the distance of the bar's centre from the concrete surface and of
+    2/3 of the centre spacing (CSA A23.3 and others) [mm] (L).
+    """
+    layers = [bar for subject in subjects for bar in subject.bars]
+    sizes = np.array([len(bar.ys) for bar in layers], dtype=np.intp)
+    layer = np.repeat(np.arange(sizes.size), sizes)
+    y = _column(place for bar in layers for place in bar.ys)
+    z, start, end = (
+        _column(getattr(bar, name) for bar in layers)[layer] for name in ("z", "start", "end")
+    )
+    counts = np.array([sum(len(bar.ys) for bar in subject.bars) for subject in subjects])
+    nearest = np.minimum(_to_surface(subjects, y, z, counts), _spacing(y, z, start, end, counts))
+    least = np.full(sizes.size, np.inf)
     np.minimum.at(least, layer, nearest)
     return least
+
+
+def _to_surface(subjects: Sequence[Subject], y: Floats, z: Floats, counts: Ints) -> Floats:
+    """Distance of each bar from the surface of its beam's first section [mm]."""
+    rows: dict[Outline, int] = {}
+    outlines = [subject.beam.runs[0].outline for subject in subjects]
+    section = np.array([rows.setdefault(outline, len(rows)) for outline in outlines])
+    of_bar = np.repeat(section, counts)
+    distance = np.empty(y.size)
+    for outline, row in rows.items():
+        bars = np.flatnonzero(of_bar == row)
+        distance[bars] = distance_to_surface(y[bars], z[bars], outline.rings)
+    return distance
+
+
+def _spacing(y: Floats, z: Floats, start: Floats, end: Floats, counts: Ints) -> Floats:
+    """2/3 of the distance of each bar to the nearest one beside it [mm]."""
+    first = np.cumsum(counts) - counts
+    spacing = np.empty(y.size)
+    for count in np.unique(counts[counts > 0]).tolist():
+        bars = first[counts == count][:, None] + np.arange(count)
+        spacing[bars] = nearest_neighbour(y[bars], z[bars], start[bars], end[bars])
+    return spacing * 2.0 / 3.0
 
 
 def stirrup_table(subjects: Sequence[Subject]) -> StirrupTable:

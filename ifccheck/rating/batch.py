@@ -49,6 +49,8 @@ from ifccheck.rating.utilisation import worst_of
 from ifccheck.rating.verdict import Evaluated
 from ifccheck.standards import LimitState, Note, Options, Standard
 
+BATCH = 400
+"""Beams rated together"""
 
 LARGEST_BLOCK = 30_000_000
 """Bytes; beyond 32 MB glibc does not learn from a block"""
@@ -86,7 +88,7 @@ class Batch:
 
 
 @dataclass(frozen=True, slots=True)
-class _Frame:
+class Frame:
     """The batch as tables, before stations."""
 
     members: Members
@@ -106,12 +108,17 @@ def batches(
     options: Options,
     cases: Sequence[Case],
     combinations: Sequence[Combination],
-    size: int = 400,
 ) -> Iterator[Batch]:
-    """Rate the subjects, a batch at a time: large enough for the cost of a call to count little."""
+    """Rate the subjects, a batch at a time."""
     keep_memory()
-    for start in range(0, len(subjects), size):
-        yield rate_batch(subjects[start : start + size], standard, options, cases, combinations)
+    for batch in batches_of(subjects):
+        yield rate_batch(batch, standard, options, cases, combinations)
+
+
+def batches_of(subjects: Sequence[Subject]) -> Iterator[Sequence[Subject]]:
+    """The subjects, so many at a time that the cost of a call counts little."""
+    for start in range(0, len(subjects), BATCH):
+        yield subjects[start : start + BATCH]
 
 
 def keep_memory() -> None:
@@ -142,7 +149,18 @@ def rate_batch(
     combinations
         Strength combinations, exclusions already worked out.
     """
-    frame = _frame(subjects, cases)
+    return rate_frame(frame_of(subjects, cases), subjects, standard, options, cases, combinations)
+
+
+def rate_frame(
+    frame: Frame,
+    subjects: Sequence[Subject],
+    standard: Standard,
+    options: Options,
+    cases: Sequence[Case],
+    combinations: Sequence[Combination],
+) -> Batch:
+    """Rate beams of which the tables are made already: numbers alone."""
     critical = _critical_sections(subjects, frame, standard)
     effects, stations = _effects(frame, critical, cases, combinations)
     arrays = make_station_arrays(
@@ -198,7 +216,8 @@ def _places(
     )
 
 
-def _frame(subjects: Sequence[Subject], cases: Sequence[Case]) -> _Frame:
+def frame_of(subjects: Sequence[Subject], cases: Sequence[Case]) -> Frame:
+    """The beams as tables."""
     runs, outlines = run_table(subjects)
     spans = span_table([subject.span for subject in subjects])
     row_of_case = {case.name: row for row, case in enumerate(cases)}
@@ -216,7 +235,7 @@ def _frame(subjects: Sequence[Subject], cases: Sequence[Case]) -> _Frame:
         unit_weight=np.array([subject.unit_weight.value for subject in subjects])[runs.beam],
     )
     members = members_of(subjects, outlines)
-    return _Frame(
+    return Frame(
         members=members,
         runs=runs,
         zones=stirrup_table(subjects),
@@ -227,7 +246,7 @@ def _frame(subjects: Sequence[Subject], cases: Sequence[Case]) -> _Frame:
     )
 
 
-def _critical_sections(subjects: Sequence[Subject], frame: _Frame, standard: Standard) -> Floats:
+def _critical_sections(subjects: Sequence[Subject], frame: Frame, standard: Standard) -> Floats:
     """x of the critical section for shear at either end of each beam [mm] (B, 2).
 
     nan where nearer stations must be checked with their own shear: a free end, an end whose
@@ -249,7 +268,7 @@ def _critical_sections(subjects: Sequence[Subject], frame: _Frame, standard: Sta
     return np.where(usable, critical, np.nan)
 
 
-def _concentrated(frame: _Frame, critical: Floats) -> Bools:
+def _concentrated(frame: Frame, critical: Floats) -> Bools:
     """Whether a concentrated load or moment lies between the face and the section (B, 2)."""
     found = np.zeros(critical.shape, dtype=np.bool_)
     lump = np.flatnonzero((frame.loads.kind == POINT) | (frame.loads.kind == MOMENT))
@@ -261,7 +280,7 @@ def _concentrated(frame: _Frame, critical: Floats) -> Bools:
 
 
 def _effects(
-    frame: _Frame, critical: Floats, cases: Sequence[Case], combinations: Sequence[Combination]
+    frame: Frame, critical: Floats, cases: Sequence[Case], combinations: Sequence[Combination]
 ) -> tuple[Effects, StationTable]:
     """Effects at stations that include every place where a greatest moment turns."""
     factors = factor_array(combinations, cases)
@@ -278,7 +297,7 @@ def _effects(
     return combine(join_effects(found, at(turns), rows), factors), stations
 
 
-def _fixed_places(frame: _Frame, critical: Floats) -> list[Places]:
+def _fixed_places(frame: Frame, critical: Floats) -> list[Places]:
     """Everything but loads at which something changes along the beams."""
     beams = np.arange(critical.shape[0])
     m, runs, zones = frame.members, frame.runs, frame.zones
