@@ -35,17 +35,27 @@ def ratings_frame(
 
     ``cases`` names rated cases that have columns even where they reach no beam.
     """
+    return _frame(ratings_rows(beams, ratings, spans or {}, cases))
+
+
+def ratings_rows(
+    beams: Sequence[Beam],
+    ratings: Mapping[str, Rating],
+    spans: Mapping[str, Span],
+    cases: Sequence[str],
+) -> list[dict[str, Cell]]:
+    """Return the rows of ``ratings_frame``, for what needs no table; all have the same columns."""
     states = _names(state.name for r in ratings.values() for state in r.limit_states)
     named = _names((*cases, *(safe.case for r in ratings.values() for safe in r.safe_loads)))
-    return _frame(
+    return [
         {
-            **_beam_cells(beam, (spans or {}).get(beam.key)),
+            **_beam_cells(beam, spans.get(beam.key)),
             **_rating_cells(ratings[beam.key]),
             **_state_cells(ratings[beam.key], states),
             **_case_cells(ratings[beam.key], named),
         }
         for beam in beams
-    )
+    ]
 
 
 def run_frame(

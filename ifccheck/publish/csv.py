@@ -2,11 +2,14 @@
 
 from __future__ import annotations
 
+import csv
+import io
 import math
+from functools import lru_cache
 
 from ifccheck.publish.report import Report
 from ifccheck.publish.words import plain
-from ifccheck.tables import Cell, ratings_frame
+from ifccheck.tables import Cell, ratings_rows
 
 _STARTS_A_FORMULA = tuple("=+-@＝＋－＠")
 
@@ -18,10 +21,12 @@ def ratings_csv(report: Report) -> str:
     ``..._state`` beside it says why.
     """
     cases = [case.case for case in report.cases]
-    frame = ratings_frame(report.model.beams, report.ratings, report.spans, cases)
-    frame.columns = frame.columns.map(neutral)
-    text: str = frame.map(_cell).to_csv(index=False, lineterminator="\n")
-    return text
+    rows = ratings_rows(report.model.beams, report.ratings, report.spans, cases)
+    text = io.StringIO()
+    writer = csv.writer(text, lineterminator="\n")
+    writer.writerow([neutral(name) for name in (rows[0] if rows else ())])
+    writer.writerows([_cell(value) for value in row.values()] for row in rows)
+    return text.getvalue()
 
 
 def _cell(value: Cell) -> Cell:
@@ -30,6 +35,7 @@ def _cell(value: Cell) -> Cell:
     return None if isinstance(value, float) and not math.isfinite(value) else value
 
 
+@lru_cache(maxsize=8192)
 def neutral(text: str) -> str:
     """Return a text that no spreadsheet takes for a formula.
 

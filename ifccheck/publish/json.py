@@ -42,6 +42,8 @@ UNITS = {"length": "mm", "force": "N", "moment": "N*mm", "line_force": "N/mm",
 
 Data = dict[str, Any]
 
+_text = json.JSONEncoder(allow_nan=False).encode
+
 
 def ratings_json(report: Report) -> str:
     """Return the whole answer as JSON; the same report gives the same text."""
@@ -54,10 +56,6 @@ def _lines(value: Any) -> str:
     if isinstance(value, list) and value:
         return "[\n" + ",\n".join(map(_text, value)) + "\n]"
     return _text(value)
-
-
-def _text(value: Any) -> str:
-    return json.dumps(value, allow_nan=False)
 
 
 def _report(report: Report) -> Data:
@@ -205,11 +203,11 @@ def _safe_load(safe: SafeLoad) -> Data:
 
 
 def _basis(item: BasisItem) -> Data:
-    value = _finite(item.value) if isinstance(item.value, float) else item.value
+    value = item.value
     return {
         "name": item.name,
         "label": item.label,
-        "value": value,
+        "value": value if isinstance(value, str) else _finite(value),
         "measure": item.measure,
         "source": item.source,
         "assumed": item.assumed,
