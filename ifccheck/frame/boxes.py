@@ -134,19 +134,31 @@ def overlaps(a: Boxes, b: Boxes) -> Floats:
         Least and greatest place along x, y and z of the first box, from its centre [mm]
         (P, 3, 2); nan where the two do not meet.
     """
-    turn = _turn(a, b)
-    offset = np.einsum("pkd,pd->pk", a.axes, b.centre - a.centre)
-    corners_b = offset[:, None, :] + np.einsum("sj,pj,pkj->psk", _SIGNS, b.half, turn)
-    cut_b = _cut_edges(corners_b, a.half)
-    from_b = _SIGNS * a.half[:, None, :] - offset[:, None, :]
-    corners_a = np.einsum("psk,pkj->psj", from_b, turn)
-    cut_a = _cut_edges(corners_a, b.half)
-    cut_a = offset[:, None, :] + np.einsum("psj,pkj->psk", cut_a, turn)
-    return _extent(np.concatenate([cut_a, cut_b], axis=1))
+    # The axes come first in every array from here on: numpy is slow along short last axes.
+    turn = np.ascontiguousarray(_turn(a, b).transpose(1, 2, 0))
+    offset = np.ascontiguousarray(np.einsum("pkd,pd->kp", a.axes, b.centre - a.centre))
+    half_a, half_b = np.ascontiguousarray(a.half.T), np.ascontiguousarray(b.half.T)
+    signs = _SIGNS.T[:, :, None]
+    corners_b = _from_second(signs * half_b[:, None, :], turn, offset)
+    corners_a = _turned(signs * half_a[:, None, :] - offset[:, None, :], turn.swapaxes(0, 1))
+    cut_a = _from_second(_cut_edges(corners_a, half_b), turn, offset)
+    points = np.concatenate([cut_a, _cut_edges(corners_b, half_a)], axis=1)
+    return np.stack([np.fmin.reduce(points, axis=1).T, np.fmax.reduce(points, axis=1).T], axis=-1)
+
+
+def _from_second(points: Floats, turn: Floats, offset: Floats) -> Floats:
+    """Places in the axes of the second box, in those of the first (3, S, P)."""
+    return offset[:, None, :] + _turned(points, turn)
+
+
+def _turned(points: Floats, turn: Floats) -> Floats:
+    """Sum over j of ``turn[k, j] points[j]`` (3, S, P)."""
+    x, y, z = (points[j] * turn[:, None, j] for j in range(3))
+    return np.asarray(x + y + z)
 
 
 def _cut_edges(corners: Floats, half: Floats) -> Floats:
-    """Ends of the parts of a box's edges within the upright box of the half extents (P, 24, 3);
+    """Ends of the parts of a box's edges within the upright box of the half extents (3, 24, P);
     nan where an edge has none."""
     start = corners[:, _EDGES[:, 0]]
     way = corners[:, _EDGES[:, 1]] - start
@@ -157,16 +169,7 @@ def _cut_edges(corners: Floats, half: Floats) -> Floats:
     inside = np.abs(start) <= limit
     enter = np.where(parallel, np.where(inside, 0.0, np.inf), np.minimum(one, other))
     leave = np.where(parallel, np.where(inside, 1.0, -np.inf), np.maximum(one, other))
-    first = np.maximum(enter.max(axis=2), 0.0)
-    last = np.minimum(leave.min(axis=2), 1.0)
+    first = np.maximum(enter.max(axis=0), 0.0)
+    last = np.minimum(leave.min(axis=0), 1.0)
     first, last = np.where(first <= last, (first, last), np.nan)
-    return np.concatenate([start + first[..., None] * way, start + last[..., None] * way], axis=1)
-
-
-def _extent(points: Floats) -> Floats:
-    """Least and greatest of the points along each axis, nan where there is none (P, 3, 2)."""
-    missing = np.isnan(points)
-    low = np.where(missing, np.inf, points).min(axis=1)
-    high = np.where(missing, -np.inf, points).max(axis=1)
-    extent = np.stack([low, high], axis=-1)
-    return np.where(np.isinf(extent), np.nan, extent)
+    return np.concatenate([start + first * way, start + last * way], axis=1)
