@@ -7,7 +7,7 @@ from dataclasses import replace
 
 import numpy as np
 import pytest
-from hypothesis import given, settings
+from hypothesis import example, given, settings
 from hypothesis import strategies as st
 
 from ifccheck.beam import Anchor, Case, Reason, Verdict
@@ -72,6 +72,14 @@ def _renamed(beam: Subject, key: str) -> Subject:
 
 @settings(deadline=None, max_examples=25)
 @given(beams, st.sampled_from(["general", "simplified"]))
+@example(
+    # the greatest moment stands elsewhere under 33 times the press
+    subject(
+        width=250.0, depth=400.0, bottom=4, spacing=100.0,
+        loads=(line("floor", 23.0), point("press", 5000.0, 333.0)),
+    ),
+    "simplified",
+)  # fmt: skip
 def test_the_rating_factor_is_where_the_beam_begins_to_fall_short(
     beam: Subject, method: str
 ) -> None:
@@ -92,7 +100,7 @@ def test_flexure_is_linear_in_the_load(beam: Subject, factor: float) -> None:
     grown = scaled(scaled(alone, "press", factor), "floor", factor)
     _, (first, second) = rated(_renamed(alone, "a"), _renamed(grown, "b"))
     assert second.limit_states[0].utilisation == pytest.approx(
-        factor * first.limit_states[0].utilisation, rel=1e-6
+        factor * first.limit_states[0].utilisation, rel=1e-6, nan_ok=True
     )
 
 

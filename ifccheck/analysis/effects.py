@@ -78,9 +78,9 @@ def _extreme(
 ) -> tuple[Floats, Floats, Bools]:
     """The extreme (C, N), what acts with it, and the way that cases without effect on it go."""
     raising, lowering = (greater, lesser) if most else (lesser, greater)
-    extreme = raising @ np.maximum(own, 0.0) + lowering @ np.minimum(own, 0.0)
+    extreme = _weighted(raising, np.maximum(own, 0.0)) + _weighted(lowering, np.minimum(own, 0.0))
     worse = own > 0.0 if most else own < 0.0
-    together = greater @ (other * worse) + lesser @ (other * ~worse)
+    together = _weighted(greater, other * worse) + _weighted(lesser, other * ~worse)
     upward = np.ones(extreme.shape, np.bool_)
     columns = np.flatnonzero(((own == 0.0) & (other != 0.0)).any(axis=0))
     if columns.size:
@@ -90,6 +90,14 @@ def _extreme(
     return extreme, together, upward
 
 
+def _weighted(factors: Floats, effects: Floats) -> Floats:
+    """Sum of the cases' effects (K, N), each times its factor (C, K), for every combination.
+
+    Not a matrix product, which would wake a pool of threads for a sum over few cases.
+    """
+    return np.asarray(np.einsum("ck,kn->cn", factors, effects))
+
+
 def _with_idle(
     own: Floats, other: Floats, worse: Bools, greater: Floats, lesser: Floats
 ) -> tuple[Floats, Bools]:
@@ -97,11 +105,11 @@ def _with_idle(
     that those may go together (C, N), and whether that is upward."""
     idle = own == 0.0
     steady = np.where(idle, 0.0, other)
-    base = greater @ (steady * worse) + lesser @ (steady * ~worse)
+    base = _weighted(greater, steady * worse) + _weighted(lesser, steady * ~worse)
     up = np.where(idle, np.maximum(other, 0.0), 0.0)
     down = np.where(idle, np.minimum(other, 0.0), 0.0)
-    highest = base + greater @ up + lesser @ down
-    lowest = base + lesser @ up + greater @ down
+    highest = base + _weighted(greater, up) + _weighted(lesser, down)
+    lowest = base + _weighted(lesser, up) + _weighted(greater, down)
     upward = np.abs(highest) >= np.abs(lowest)
     return np.where(upward, highest, lowest), upward
 
@@ -167,8 +175,8 @@ def demands(effects: Effects, critical: Ints, scaled: Sequence[int] = ()) -> Dem
             moment=moment,
             shear=shear,
             critical_shear=_critical_shear(shear, critical, serves),
-            peak_sagging=_spread(factors @ sagging[rows], station_beam, shape),
-            peak_hogging=_spread(factors @ hogging[rows], station_beam, shape),
+            peak_sagging=_spread(_weighted(factors, sagging[rows]), station_beam, shape),
+            peak_hogging=_spread(_weighted(factors, hogging[rows]), station_beam, shape),
             can_sag=np.broadcast_to(sag, shape),
             can_hog=np.broadcast_to(hog, shape),
         )
@@ -275,20 +283,28 @@ def _peaks(cases: CaseEffects, moment: Floats, shear: Floats) -> Floats:
     return np.maximum(peaks, 0.0)
 
 
-def turning_places(effects: Effects) -> tuple[Ints, Floats]:
+def turning_places(effects: Effects, *, alone: bool = True) -> tuple[Ints, Floats]:
     """Places between stations where the moment of a combination, or of a case alone, turns.
 
     Between two stations a case keeps the factor that fits the sum of its moments at both, and
     the shear is taken as a straight line.
+
+    Parameters
+    ----------
+    effects
+        Effects at stations.
+    alone
+        Whether the moments of the cases alone are looked at, too.
 
     Returns
     -------
     tuple
         Row of the beam and x [mm] of each, to be made stations.
     """
-    alone = np.eye(effects.greater.shape[1])
-    greater = np.concatenate([effects.greater, alone])
-    lesser = np.concatenate([effects.lesser, alone])
+    greater, lesser = effects.greater, effects.lesser
+    if alone:
+        single = np.eye(greater.shape[1])
+        greater, lesser = np.concatenate([greater, single]), np.concatenate([lesser, single])
     found = [_turns(effects.cases, greater, lesser, sign) for sign in (1.0, -1.0)]
     beam = np.concatenate([part[0] for part in found])
     x = np.concatenate([part[1] for part in found])
@@ -308,12 +324,13 @@ def _turns(cases: CaseEffects, greater: Floats, lesser: Floats, sign: float) -> 
     worse = moment[:, rows] + moment[:, rows + 1] > 0.0
 
     def combined(effect: Floats) -> Floats:
-        return np.asarray(greater @ (effect * worse) + lesser @ (effect * ~worse))
+        return _weighted(greater, effect * worse) + _weighted(lesser, effect * ~worse)
 
     first, last = combined(shear[:, rows]), combined(shear[:, rows + 1])
     combination, interval = np.nonzero((first > 0.0) & (last < 0.0))
     before, after = first[combination, interval], last[combination, interval]
-    start = combined(moment[:, rows])[combination, interval]
+    full = np.where(worse[:, interval], greater.T[:, combination], lesser.T[:, combination])
+    start = (full * moment[:, rows[interval]]).sum(axis=0)
     part, width = before / (before - after), gap[rows[interval]]
     apex = start + before * part * width / 2.0
     inner = (part > 1e-3) & (part < 1.0 - 1e-3) & (apex > 0.0)

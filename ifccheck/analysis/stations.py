@@ -191,6 +191,21 @@ def _search_within(values: Floats, low: Ints, high: Ints, aim: Floats) -> Ints:
     return low
 
 
+def rows_before(station_beam: Ints, station_x: Floats, beam: Ints, x: Floats) -> Ints:
+    """Row of the last station at or before each place of a beam, else of the beam's first.
+
+    Parameters
+    ----------
+    station_beam, station_x
+        Stations sorted by beam and x (N).
+    beam, x
+        Places on those beams (Q).
+    """
+    first = np.searchsorted(station_beam, beam)
+    after = np.searchsorted(station_beam, beam, side="right")
+    return np.maximum(_search_within(station_x, first, after, x + SAME_PLACE) - 1, first)
+
+
 def critical_rows(stations: StationTable, start: Floats, end: Floats) -> Ints:
     """Row of the station whose shear may be used at each station.
 

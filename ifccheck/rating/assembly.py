@@ -9,9 +9,10 @@ from typing import Any
 
 import numpy as np
 
-from ifccheck.analysis.spans import FREE, SpanTable
+from ifccheck.analysis.loads import LoadTable, join_loads, load_table, self_weight_lines
+from ifccheck.analysis.spans import FREE, SpanTable, span_table
 from ifccheck.analysis.stations import SAME_PLACE, StationTable
-from ifccheck.beam import Anchor, Outline
+from ifccheck.beam import SELF, Anchor, Case, Outline
 from ifccheck.mechanics.arrays import (
     ANCHOR_FULL,
     ANCHOR_HOOK,
@@ -61,6 +62,51 @@ class StirrupTable:
     area: Floats
     """All legs [mm2]; nan where the legs are not stated"""
     yield_strength: Floats
+
+
+@dataclass(frozen=True, slots=True)
+class Frame:
+    """The batch as tables, before stations."""
+
+    members: Members
+    runs: RunTable
+    zones: StirrupTable
+    spans: SpanTable
+    faces: Floats
+    """(B, 2)"""
+    loads: LoadTable
+    checked: Floats
+    """Where checks begin and end on each beam [mm] (B, 2)"""
+
+
+def frame_of(subjects: Sequence[Subject], cases: Sequence[Case]) -> Frame:
+    """The beams as tables."""
+    runs, outlines = run_table(subjects)
+    spans = span_table([subject.span for subject in subjects])
+    row_of_case = {case.name: row for row, case in enumerate(cases)}
+    row_of_beam = {subject.beam.key: row for row, subject in enumerate(subjects)}
+    stated = load_table(
+        [load for subject in subjects for load in subject.loads], row_of_beam, row_of_case
+    )
+    weight = self_weight_lines(
+        beam=runs.beam,
+        case=row_of_case[SELF],
+        start=runs.start,
+        end=runs.end,
+        area_start=runs.area,
+        area_end=runs.area,
+        unit_weight=np.array([subject.unit_weight.value for subject in subjects])[runs.beam],
+    )
+    members = members_of(subjects, outlines)
+    return Frame(
+        members=members,
+        runs=runs,
+        zones=stirrup_table(subjects),
+        spans=spans,
+        faces=np.array([subject.faces for subject in subjects]),
+        loads=join_loads(stated, weight),
+        checked=checked_stretch(members, spans),
+    )
 
 
 @dataclass(frozen=True, slots=True)

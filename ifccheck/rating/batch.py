@@ -13,12 +13,8 @@ from ifccheck.analysis.effects import Effects, combine, demands, turning_places
 from ifccheck.analysis.loads import (
     MOMENT,
     POINT,
-    LoadTable,
-    join_loads,
-    load_table,
-    self_weight_lines,
 )
-from ifccheck.analysis.spans import FREE, SpanTable, span_table
+from ifccheck.analysis.spans import FREE
 from ifccheck.analysis.statics import CaseEffects, case_effects, join_effects
 from ifccheck.analysis.stations import (
     Places,
@@ -30,21 +26,18 @@ from ifccheck.analysis.stations import (
     places,
 )
 from ifccheck.beam import SELF, Case, Combination
-from ifccheck.mechanics.arrays import Bools, Demand, Floats, Ints, Members
+from ifccheck.mechanics.arrays import Bools, Demand, Floats, Ints
 from ifccheck.rating import verdict
 from ifccheck.rating.assembly import (
-    RunTable,
-    StirrupTable,
-    checked_stretch,
+    Frame,
+    frame_of,
     make_station_arrays,
-    members_of,
-    run_table,
-    stirrup_table,
     within,
 )
 from ifccheck.rating.elements import Elements, distinct_elements, first_greatest
-from ifccheck.rating.factors import Factors, evaluate_everywhere, rating_factors
+from ifccheck.rating.factors import Factors, bases_of, evaluate_everywhere, rating_factors
 from ifccheck.rating.subject import Subject
+from ifccheck.rating.turning import Growth, with_turns
 from ifccheck.rating.utilisation import worst_of
 from ifccheck.rating.verdict import Evaluated
 from ifccheck.standards import LimitState, Note, Options, Standard
@@ -85,21 +78,6 @@ class Batch:
     envelope: Envelope
     notes: tuple[Note, ...]
     basis: dict[str, Floats]
-
-
-@dataclass(frozen=True, slots=True)
-class Frame:
-    """The batch as tables, before stations."""
-
-    members: Members
-    runs: RunTable
-    zones: StirrupTable
-    spans: SpanTable
-    faces: Floats
-    """(B, 2)"""
-    loads: LoadTable
-    checked: Floats
-    """Where checks begin and end on each beam [mm] (B, 2)"""
 
 
 def batches(
@@ -171,7 +149,7 @@ def rate_frame(
     acting = demands(effects, critical_rows(stations, critical[:, 0], critical[:, 1]), rated)
     first = stations.first_rows(len(subjects))
     elements = distinct_elements(acting, stations.beam)
-    bases = _bases(standard, prepared, elements)
+    bases = bases_of(standard.limit_states, prepared, elements.station)
     found = [
         evaluate_everywhere(state, basis, elements.station.size, elements.total.take)
         for state, basis in zip(standard.limit_states, bases, strict=True)
@@ -187,7 +165,12 @@ def rate_frame(
             for state, (utilisation, _) in zip(standard.limit_states, found, strict=True)
         ),
         factors={
-            cases[row].name: rating_factors(standard.limit_states, bases, elements, share)
+            cases[row].name: with_turns(
+                rating_factors(standard.limit_states, bases, elements, share, stations.x),
+                Growth(frame, effects, row, factor_array(combinations, cases)),
+                standard,
+                options,
+            )
             for row, share in zip(acting.scaled, elements.shares, strict=True)
         },
         places=_places(subjects, cases, combinations, effects, stations),
@@ -213,36 +196,6 @@ def _places(
             frozenset({nature[SELF], *(nature[load.case] for load in subject.loads)})
             for subject in subjects
         ),
-    )
-
-
-def frame_of(subjects: Sequence[Subject], cases: Sequence[Case]) -> Frame:
-    """The beams as tables."""
-    runs, outlines = run_table(subjects)
-    spans = span_table([subject.span for subject in subjects])
-    row_of_case = {case.name: row for row, case in enumerate(cases)}
-    row_of_beam = {subject.beam.key: row for row, subject in enumerate(subjects)}
-    stated = load_table(
-        [load for subject in subjects for load in subject.loads], row_of_beam, row_of_case
-    )
-    weight = self_weight_lines(
-        beam=runs.beam,
-        case=row_of_case[SELF],
-        start=runs.start,
-        end=runs.end,
-        area_start=runs.area,
-        area_end=runs.area,
-        unit_weight=np.array([subject.unit_weight.value for subject in subjects])[runs.beam],
-    )
-    members = members_of(subjects, outlines)
-    return Frame(
-        members=members,
-        runs=runs,
-        zones=stirrup_table(subjects),
-        spans=spans,
-        faces=np.array([subject.faces for subject in subjects]),
-        loads=join_loads(stated, weight),
-        checked=checked_stretch(members, spans),
     )
 
 
@@ -318,13 +271,6 @@ def _fixed_places(frame: Frame, critical: Floats) -> list[Places]:
         for beam, x, both in edges
         for finite in [np.isfinite(x)]
     ]
-
-
-def _bases(standard: Standard, prepared: Any, elements: Elements) -> list[Any]:
-    """What each limit state needs at the elements; one for all that share it."""
-    functions = dict.fromkeys(state.quick.basis for state in standard.limit_states)
-    made = {basis: basis(prepared).take(elements.station) for basis in functions}
-    return [made[state.quick.basis] for state in standard.limit_states]
 
 
 def _evaluated(

@@ -40,6 +40,8 @@ class Factors:
     """Row of the limit state that limits it, -1 where none does"""
     element: Ints
     """Flattened (arrangement, station) that limits it, -1 where none does"""
+    x: Floats
+    """Where that stands [mm]; nan where none does"""
 
 
 @dataclass(frozen=True, slots=True)
@@ -102,8 +104,20 @@ def evaluate_everywhere(
     return utilisation, resistance
 
 
+def bases_of(states: Sequence[LimitState], prepared: Any, station: Ints) -> list[Any]:
+    """What each limit state needs at the stations of elements; one for all that share it."""
+    functions = dict.fromkeys(state.quick.basis for state in states)
+    made = {basis: basis(prepared).take(station) for basis in functions}
+    return [made[state.quick.basis] for state in states]
+
+
 def rating_factors(
-    states: Sequence[LimitState], bases: Sequence[Any], elements: Elements, share: Demand
+    states: Sequence[LimitState],
+    bases: Sequence[Any],
+    elements: Elements,
+    share: Demand,
+    x: Floats,
+    ceiling: Floats | None = None,
 ) -> Factors:
     """Solve the rating factor of one case on all beams at once.
 
@@ -117,6 +131,10 @@ def rating_factors(
         Demand of everything.
     share
         The part of it that the rated case makes (E).
+    x
+        Stations [mm] (N).
+    ceiling
+        Factors above which no one asks (B).
 
     Returns
     -------
@@ -127,12 +145,14 @@ def rating_factors(
     factor = np.full(beams, np.inf)
     state_row = np.full(beams, -1, dtype=np.intp)
     element = np.full(beams, -1, dtype=np.intp)
+    most = np.full(beams, GREATEST_FACTOR) if ceiling is None else ceiling
     problems = _problems(states, bases, elements, share)
     for row in sorted(range(len(problems)), key=lambda i: not states[i].linear):
-        found, at = _least_factor(problems[row], np.minimum(factor, GREATEST_FACTOR))
+        found, at = _least_factor(problems[row], np.minimum(factor, most))
         better = found < factor
         factor[better], element[better], state_row[better] = found[better], at[better], row
-    return Factors(factor, state_row, element)
+    place = np.where(element >= 0, x[element % x.size], np.nan)
+    return Factors(factor, state_row, element, place)
 
 
 def _problems(

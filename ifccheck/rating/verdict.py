@@ -164,7 +164,7 @@ def safe_load(
         single_kind=kind,
         text=_safe_load_text(factor, kind, value, loads),
         governing=states[row].title if row >= 0 else "",
-        position=places.position(element) if row >= 0 else math.nan,
+        position=float(factors.x[beam]),
         combination=places.combination(element, beam) if row >= 0 else "",
     )
 
