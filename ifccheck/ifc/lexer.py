@@ -121,7 +121,9 @@ def _require_step(data: bytes) -> None:
 
 def _blank_hidden(data: bytes) -> tuple[bytes, tuple[Comment, ...]]:
     """Blank comments and hidden apostrophes, at the same length."""
-    pattern = _COMMENT_OR_HIDDEN_QUOTE if b"\\S\\'" in data else _COMMENT
+    # One byte is found ten times as fast as several, and many files have no backslash at all.
+    hidden = b"\\" in data and b"\\S\\'" in data
+    pattern = _COMMENT_OR_HIDDEN_QUOTE if hidden else _COMMENT
     blanked = bytearray()
     comments = []
     in_text, at = False, 0
