@@ -194,7 +194,10 @@ class _Concrete:
 
 
 def _first(*given: Given | None) -> Given | None:
-    return next((each for each in given if each is not None), None)
+    for each in given:
+        if each is not None:
+            return each
+    return None
 
 
 def _concrete(beam: Beam, sources: _Sources, findings: _Findings) -> _Concrete:

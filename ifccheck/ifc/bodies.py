@@ -5,7 +5,6 @@ from __future__ import annotations
 import math
 from collections.abc import Iterator
 from dataclasses import dataclass, replace
-from functools import cached_property
 from typing import TYPE_CHECKING, NamedTuple
 
 import numpy as np
@@ -86,7 +85,7 @@ class Prism:
         face = self.placed(self.profile.rings[0])
         return np.concatenate((face, face + self.along))
 
-    @cached_property
+    @property
     def axes(self) -> tuple[Triple, Triple, Triple]:
         """The x, y of the profile's plane and the normal to their right hand."""
         x, y, _ = self.matrix[:3, :3].T.tolist()

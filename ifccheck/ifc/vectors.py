@@ -62,4 +62,9 @@ def unit(ratios: Any) -> Triple:
 def rounded(vector: Sequence[float]) -> Triple:
     """Return a vector without the noise of its last digits."""
     x, y, z = vector
-    return round(x, 9), round(y, 9), round(z, 9)
+    return _rounded(x), _rounded(y), _rounded(z)
+
+
+def _rounded(value: float) -> float:
+    # Most coordinates of directions are whole, and rounding takes ten times as long as asking.
+    return value if value % 1.0 == 0.0 else round(value, 9)
