@@ -143,6 +143,10 @@ def _one(
     findings = _Findings(beam.key, list(beam.reasons), list(beam.remarks))
     statement = sources.statements.get(beam.key, BeamStatement())
     findings.remarks += [*sources.support_remarks.get(beam.key, ()), *statement.remarks]
+    findings.remarks += [
+        Remark(beam.key, "brief", f"the engineer states: {text}", "assumption")
+        for text in _stated(statement)
+    ]
     concrete = _concrete(beam, sources, findings)
     if line is None and beam.axis:
         unknown = sources.supports[beam.key]
@@ -160,6 +164,11 @@ def _one(
         line=line,
         faces=support_faces(line.spans[0]),
         direct=_direct(sources.contacts.get(beam.key, ())),
+        side_loaded=any(
+            contact.place == "between" and contact.side == "side"
+            for contact in sources.contacts.get(beam.key, ())
+        ),
+        statements=_stated(statement),
         bars=steel.bars,
         stirrups=steel.stirrups,
         stirrups_known=steel.stirrups_known,
@@ -181,6 +190,16 @@ def _one(
 
 def _distinct(reasons: Sequence[Reason]) -> tuple[Reason, ...]:
     return tuple({reason.text: reason for reason in reasons}.values())
+
+
+def _stated(statement: BeamStatement) -> tuple[str, ...]:
+    """What the engineer stated that overrules a doubt: it must be seen."""
+    found = []
+    if statement.unloaded:
+        found.append("unloaded = true: self weight alone is meant")
+    if statement.loads_complete:
+        found.append("loads_complete = true: what rests on the beam is in the loads given")
+    return tuple(found)
 
 
 # Concrete ------------------------------------------------------------------------------------

@@ -357,3 +357,29 @@ def test_the_safe_load_of_a_beam_that_is_not_rated_is_not_told() -> None:
     assert math.isnan(untold.factor)
     assert math.isnan(untold.single_value)
     assert "not rated" in untold.text
+
+
+@pytest.mark.parametrize("length", [1.0, 100.0, 300.0])
+def test_a_strip_of_load_beside_a_support_is_a_concentrated_load(length: float) -> None:
+    """11.3.2: the shear at dv serves the stretch to the face only without a concentrated load."""
+    start = 450.0 - length / 2.0
+    strip = Load("beam", "floor", "line", start, start + length, (250e3 / length,) * 2)
+    lump = subject(spacing=300.0, bottom=5, loads=(point("floor", 250e3, 450.0),))
+    _, (as_point,) = rated(lump)
+    _, (as_strip,) = rated(replace(lump, loads=(strip,)))
+    shear = next(state.utilisation for state in as_strip.limit_states if state.name == "Shear")
+    reference = next(state.utilisation for state in as_point.limit_states if state.name == "Shear")
+    assert as_point.verdict is as_strip.verdict is Verdict.FALLS_SHORT
+    assert shear == pytest.approx(reference, rel=0.05)
+
+
+def test_the_tension_at_the_greatest_moment_bounds_nothing_where_loads_come_from_the_side() -> None:
+    """11.3.9.4 asks that the load presses into the compression face (from memory)."""
+    beam = subject(loads=(point("floor", 150e3, 3000.0),))
+    _, (on_top,) = rated(beam)
+    _, (at_side,) = rated(replace(beam, side_loaded=True))
+
+    def tension(rating: Rating) -> float:
+        return next(s.utilisation for s in rating.limit_states if s.name == "LongitudinalTension")
+
+    assert tension(at_side) > 1.02 * tension(on_top)

@@ -9,7 +9,7 @@ without effect on it takes the factor that makes the accompanying effect worse.
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 
@@ -143,7 +143,12 @@ class Demands:
     shares: tuple[Demand, ...]
 
 
-def demands(effects: Effects, critical: Ints, scaled: Sequence[int] = ()) -> Demands:
+def demands(
+    effects: Effects,
+    critical: Ints,
+    scaled: Sequence[int] = (),
+    unbounded: Bools | None = None,
+) -> Demands:
     """What acts at each station in every arrangement.
 
     Parameters
@@ -156,6 +161,9 @@ def demands(effects: Effects, critical: Ints, scaled: Sequence[int] = ()) -> Dem
         the station itself (N).
     scaled
         Cases whose loads may be multiplied.
+    unbounded
+        Beams on which the greatest moment bounds nothing: their peaks are infinite, where they
+        are not nothing (B).
 
     Notes
     -----
@@ -183,11 +191,22 @@ def demands(effects: Effects, critical: Ints, scaled: Sequence[int] = ()) -> Dem
 
     every = np.arange(effects.greater.shape[1])
     total = demand_of(effects.moment, effects.shear, effects.greater, every)
+    if unbounded is not None and unbounded.any():
+        total = _without_bounds(total, unbounded[station_beam])
     shares = tuple(
         demand_of(moment, shear, effects.greater[:, [case]], np.array([case]))
         for case, (moment, shear) in zip(scaled, parts, strict=True)
     )
     return Demands(total, tuple(scaled), shares)
+
+
+def _without_bounds(total: Demand, unbounded: Bools) -> Demand:
+    def freed(peak: Floats) -> Floats:
+        return np.where(unbounded & (peak > 0.0), np.inf, peak)
+
+    return replace(
+        total, peak_sagging=freed(total.peak_sagging), peak_hogging=freed(total.peak_hogging)
+    )
 
 
 def _spread(per_beam: Floats, station_beam: Ints, shape: tuple[int, ...]) -> Floats:

@@ -77,6 +77,8 @@ class Frame:
     loads: LoadTable
     checked: Floats
     """Where checks begin and end on each beam [mm] (B, 2)"""
+    side_loaded: Bools
+    """Members frame into the side of the beam: its loads do not compress its top (B)"""
 
 
 def frame_of(subjects: Sequence[Subject], cases: Sequence[Case]) -> Frame:
@@ -106,6 +108,7 @@ def frame_of(subjects: Sequence[Subject], cases: Sequence[Case]) -> Frame:
         faces=np.array([subject.faces for subject in subjects]),
         loads=join_loads(stated, weight),
         checked=checked_stretch(members, spans),
+        side_loaded=np.array([subject.side_loaded for subject in subjects]),
     )
 
 

@@ -70,9 +70,15 @@ def _standing(subject: Subject) -> list[BasisItem]:
     span = subject.span
     return [
         BasisItem("Span", "span", span.end - span.start, "length", "supports"),
+        *([_statements(subject)] if subject.statements else []),
         _support("StartSupport", "support at the start", span.start_support),
         _support("EndSupport", "support at the end", span.end_support),
     ]
+
+
+def _statements(subject: Subject) -> BasisItem:
+    text = "; ".join(subject.statements)
+    return BasisItem("Statements", "stated by the engineer", text, "text", "brief, [[beams]]")
 
 
 @lru_cache(maxsize=1024)

@@ -10,10 +10,7 @@ import numpy as np
 
 from ifccheck.analysis.combinations import factor_array
 from ifccheck.analysis.effects import Effects, combine, demands, turning_places
-from ifccheck.analysis.loads import (
-    MOMENT,
-    POINT,
-)
+from ifccheck.analysis.loads import LINE
 from ifccheck.analysis.spans import FREE
 from ifccheck.analysis.statics import CaseEffects, case_effects, join_effects
 from ifccheck.analysis.stations import (
@@ -146,7 +143,12 @@ def rate_frame(
     )
     prepared = standard.prepare(frame.members, arrays, options)
     rated = tuple(row for row, case in enumerate(cases) if case.rated)
-    acting = demands(effects, critical_rows(stations, critical[:, 0], critical[:, 1]), rated)
+    acting = demands(
+        effects,
+        critical_rows(stations, critical[:, 0], critical[:, 1]),
+        rated,
+        unbounded=frame.side_loaded,
+    )
     first = stations.first_rows(len(subjects))
     elements = distinct_elements(acting, stations.beam)
     bases = bases_of(standard.limit_states, prepared, elements.station)
@@ -222,13 +224,21 @@ def _critical_sections(subjects: Sequence[Subject], frame: Frame, standard: Stan
 
 
 def _concentrated(frame: Frame, critical: Floats) -> Bools:
-    """Whether a concentrated load or moment lies between the face and the section (B, 2)."""
+    """Whether a concentrated load or moment lies between the face and the section (B, 2).
+
+    A line load is one where it is shorter than twice the distance between them, or than a
+    quarter of the distance between the faces: it comes down as a strut of its own.
+    """
     found = np.zeros(critical.shape, dtype=np.bool_)
-    lump = np.flatnonzero((frame.loads.kind == POINT) | (frame.loads.kind == MOMENT))
-    beam, x = frame.loads.beam[lump], frame.loads.start[lump]
-    near_start, near_end = x <= critical[beam, 0], x >= critical[beam, 1]
-    found[beam[near_start], 0] = True
-    found[beam[near_end], 1] = True
+    loads, faces = frame.loads, frame.faces
+    distance = np.abs(critical - faces)
+    short = np.maximum(2.0 * distance, 0.25 * np.abs(faces[:, 1:] - faces[:, :1]))
+    for end, near in (
+        (0, loads.start <= critical[loads.beam, 0]),
+        (1, loads.end >= critical[loads.beam, 1]),
+    ):
+        lump = (loads.kind != LINE) | (loads.end - loads.start < short[loads.beam, end])
+        found[loads.beam[near & lump], end] = True
     return found
 
 

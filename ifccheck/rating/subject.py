@@ -29,8 +29,12 @@ class Subject:
     direct: tuple[bool, bool]
     """Whether the reaction compresses the start and the end: a bearing from below or a column,
     not the side of another beam"""
+    side_loaded: bool
+    """Whether other members frame into its side between the supports"""
     loads: tuple[Load, ...]
     """Without self weight"""
+    statements: tuple[str, ...]
+    """What the engineer stated of it that overrules a doubt"""
     concrete_strength: Given
     unit_weight: Given
     """Of the concrete with its steel, for self weight [N/mm3]"""
