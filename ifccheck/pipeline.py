@@ -7,8 +7,8 @@ from dataclasses import dataclass
 from pathlib import Path
 
 from ifccheck import __version__, results
-from ifccheck.analysis.combinations import expand_exclusions
-from ifccheck.beam import Case, Combination, Model, Verdict
+from ifccheck.analysis.combinations import expand_exclusions, not_covered
+from ifccheck.beam import Case, Combination, Model, Remark, Verdict
 from ifccheck.brief.cases import cases_of, combination_remarks, combinations_of
 from ifccheck.brief.load import load_brief
 from ifccheck.brief.merging import Matches
@@ -42,6 +42,10 @@ class Plan:
     options: Options
     cases: tuple[Case, ...]
     combinations: tuple[Combination, ...]
+    actions: str
+    """Where the combinations come from"""
+    remarks: tuple[Remark, ...]
+    """On the combinations, where they are the brief's own"""
     schedule: tuple[ScheduleRow, ...]
 
 
@@ -109,18 +113,33 @@ def make_plan(brief_path: Path) -> Plan:
     brief = load_brief(brief_path)
     standard = _standard(brief)
     cases = cases_of(brief)
-    stated = combinations_of(brief)
-    strength = [c for c in stated if c.kind == "strength"] or [
-        c for c in standard.combinations(cases) if c.kind == "strength"
-    ]
+    stated = [c for c in combinations_of(brief) if c.kind == "strength"]
+    published = [c for c in standard.combinations(cases) if c.kind == "strength"]
     return Plan(
         brief=brief,
         standard=standard,
         options=Options(_shear_method(brief, standard)),
         cases=cases,
-        combinations=expand_exclusions(strength, cases),
+        combinations=expand_exclusions(stated or published, cases),
+        actions=f"the brief's own, not {standard.actions}" if stated else standard.actions,
+        remarks=own_combinations(stated, published, standard.actions) if stated else (),
         schedule=read_schedule(brief.schedule) if brief.schedule else (),
     )
+
+
+def own_combinations(
+    stated: Sequence[Combination], published: Sequence[Combination], actions: str
+) -> tuple[Remark, ...]:
+    """Tell that the brief's combinations replace the published ones, and which of those they
+    do not cover."""
+    missed = not_covered(published, stated)
+    text = f"the strength combinations are the brief's own and replace those of {actions}"
+    remarks = [Remark(None, "combinations", text, "doubt")]
+    if missed:
+        names = ", ".join(combination.name for combination in missed)
+        text = f"the brief's combinations ask for less than {names} of {actions}"
+        remarks.append(Remark(None, "combinations", text, "doubt"))
+    return tuple(remarks)
 
 
 def _standard(brief: Brief) -> Standard:
@@ -197,11 +216,12 @@ def rate_model(read: Read, matches: Matches, plan: Plan, found: Sequence[Found],
         *model.remarks,
         *schedule_remarks(plan.schedule, found),
         *combination_remarks(plan.brief),
+        *plan.remarks,
     )
     report = results.report_of(
         model, gathered, rated, remarks, version=__version__, brief=plan.brief,
         standard=plan.standard, options=plan.options, cases=plan.cases,
-        combinations=plan.combinations,
+        combinations=plan.combinations, actions=plan.actions,
     )  # fmt: skip
     return Rated(read, gathered, rated, report)
 

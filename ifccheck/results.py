@@ -39,6 +39,7 @@ def report_of(
     options: Options,
     cases: Sequence[Case],
     combinations: Sequence[Combination],
+    actions: str,
 ) -> Report:
     """Gather all that the publishers need of one model."""
     answers = {
@@ -51,7 +52,7 @@ def report_of(
         standard_id=standard.id,
         standard_title=standard.title,
         standard_edition=standard.edition,
-        actions=standard.actions,
+        actions=actions,
         shear_method=options.shear_method,
         brief_name=brief.file_name,
         brief_sha256=brief.sha256,

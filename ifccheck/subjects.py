@@ -43,6 +43,7 @@ from ifccheck.standards import Standard
 Row = TypeVar("Row", Load, Remark)
 
 _DIRECT_CLASSES = ("IfcColumn", "IfcWall", "IfcFooting", "IfcPile", "IfcBearing")
+_CRANE = "crane loads stand where the brief puts them: they are not moved, and carry no impact"
 _LAYOUT_AGGREGATE = 20.0
 _THROUGH_THE_WEB = "loads are assumed to act through the web: torsion is not checked"
 
@@ -361,6 +362,9 @@ def _judge_loads(
         findings.refuse("torsion: it is not checked", blocking=False)
     else:
         findings.remarks.append(Remark(beam.key, "demand", _THROUGH_THE_WEB, "assumption"))
+    natures = {case.name: case.nature for case in sources.brief.cases}
+    if any(natures.get(load.case) == "crane" for load in loads):
+        findings.remarks.append(Remark(beam.key, "demand", _CRANE, "assumption"))
     if line and not statement.loads_complete:
         span = line.spans[0]
         resting = between_reactions(

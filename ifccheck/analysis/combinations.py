@@ -52,6 +52,20 @@ def expand_exclusions(
     return tuple(expanded.values())
 
 
+def not_covered(
+    wanted: Sequence[Combination], given: Sequence[Combination]
+) -> tuple[Combination, ...]:
+    """The combinations of which no given one is at least as onerous at every case."""
+    return tuple(one for one in wanted if not any(_covers(other, one) for other in given))
+
+
+def _covers(other: Combination, one: Combination) -> bool:
+    return all(
+        other.factors[name][0] >= unfavourable and other.factors[name][1] <= favourable
+        for name, (unfavourable, favourable) in one.factors.items()
+    )
+
+
 def case_factors(combination: Combination, case: Case) -> tuple[float, float]:
     """Unfavourable and favourable factor of a case in a combination.
 

@@ -107,6 +107,7 @@ def _result(rating: Rating, report: Report, identifier: str) -> list[ResultPrope
         ("LimitStatesNotChecked", "text", ", ".join(rating.not_checked)),
         ("Reason", "text", "; ".join(reason.text for reason in rating.reasons)),
         ("Standard", "label", report.standard_name),
+        ("Actions", "label", report.actions),
         ("Basis", "identifier", identifier),
     ]
     return _given(rows)
