@@ -107,6 +107,23 @@ def test_a_downward_load_points_down_above_and_below_the_beam() -> None:
         assert all(y < tip[1] for _, y in back)
 
 
+@pytest.mark.parametrize("moment", [5e6, -5e6])
+def test_a_moment_load_turns_as_it_acts(moment: float) -> None:
+    """A positive moment turns anticlockwise with x to the right and z up (``beam.Load``)."""
+    sheet = sheet_of("B-1000")
+    load = replace(sheet.loads[-1], kind="moment", values=(moment, 0.0), face="top")
+    (drawn,) = of_class(elevation(replace(sheet, loads=(load,))), "moment")
+    data = drawn.get("d") or ""
+    (arc,) = re.findall(r"^M(\S+) (\S+)A11 11 0 1 ([01]) (\S+) (\S+)l", data)
+    x0, y0, sweep, x1, y1 = map(float, arc)
+    assert (sweep == 1.0) is (moment < 0.0), "SVG draws an arc of sweep 1 clockwise"
+    centre = (x1, y0)
+    before = math.atan2(centre[1] - y0, x0 - centre[0])
+    after = math.atan2(centre[1] - y1, x1 - centre[0])
+    turned = (after - before) % math.tau if moment > 0.0 else (before - after) % math.tau
+    assert turned == pytest.approx(1.5 * math.pi), "three quarters of a turn, y of SVG downward"
+
+
 def test_every_support_pair_can_be_drawn() -> None:
     svg = elevation(sheet_of("W-3"))
     assert len(of_class(svg, "support")) == 2

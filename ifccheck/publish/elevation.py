@@ -289,7 +289,7 @@ def _single_load(load: Load, frame: Frame, foot: float, base: float, away: float
 
 
 def _turning(x: float, y: float, moment: float) -> str:
-    """Three quarters of a circle with its point, clockwise for a positive moment."""
-    sweep, side = (1, 1.0) if moment >= 0 else (0, -1.0)
+    """Three quarters of a circle with its point, anticlockwise for a positive moment."""
+    sweep, side = (0, -1.0) if moment >= 0 else (1, 1.0)
     arc = f"M{number(x - 11 * side)} {number(y)}A11 11 0 1 {sweep} {number(x)} {number(y + 11)}"
     return arc + f"l{number(6 * side)} -4m{number(-6 * side)} 4l{number(6 * side)} 5"

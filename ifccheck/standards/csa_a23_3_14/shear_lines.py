@@ -55,7 +55,7 @@ CRACK_LINES = (
     ),
     CalculationLine(
         "e",
-        "distance to the critical section where eps_x is taken; 0 at the place itself",
+        "how far off the section is at which eps_x is taken; 0 where it is this place",
         "",
         "distance",
         "mm",
@@ -206,7 +206,13 @@ RESISTANCE_LINES = (
         "N",
         "11.3.3",
     ),
-    given("k", "1 where the face has tension steel, else 0", "steel_present", "", "11.3.1"),
+    given(
+        "k",
+        "1: the tension face holds steel; 0: it holds none, so there is no resistance",
+        "steel_present",
+        "",
+        "11.3.1",
+    ),
     CalculationLine(
         "Vr",
         "shear resistance",
