@@ -410,20 +410,26 @@ def test_array_equals_scalar(state_of, case):
 
 @settings(deadline=None, max_examples=30)
 @given(cases())
-@pytest.mark.parametrize("state_of", STANDARD.limit_states, ids=lambda s: s.name)
-def test_the_quick_utilisation_is_that_of_the_check(state_of, case):
+@pytest.mark.parametrize("quick", STANDARD.quick, ids=lambda q: q.states[0].name)
+def test_the_quick_evaluation_is_that_of_the_check(quick, case):
     """Wherever a run evaluates a limit state, it is what the calculation prints."""
     state, acting = case
     shape = acting.moment.shape
     every = np.indices(shape).reshape(2, -1)
-    basis = state_of.quick.basis(state).take(every[1])
-    quick, resistance = state_of.quick.evaluate(basis, acting.at(tuple(every)))
-    whole = state_of.check(state, acting)
-    np.testing.assert_allclose(quick.reshape(shape), whole.utilisation, rtol=1e-12)
-    np.testing.assert_allclose(resistance.reshape(shape), whole.resistance, rtol=1e-12)
+    basis, flat = quick.basis(state).take(every[1]), acting.at(tuple(every))
+    found = quick.evaluate(basis, flat)
     some = slice(0, None, 2)
-    again = state_of.quick.evaluate(basis.take(some), acting.at(tuple(every)).take(some))
-    np.testing.assert_array_equal(again, (quick[some], resistance[some]))
+    again = quick.evaluate(basis.take(some), flat.take(some))
+    for state_of, one, other in zip(quick.states, found, again, strict=True):
+        whole = state_of.check(state, acting)
+        np.testing.assert_allclose(one[0].reshape(shape), whole.utilisation, rtol=1e-12)
+        np.testing.assert_allclose(one[1].reshape(shape), whole.resistance, rtol=1e-12)
+        np.testing.assert_array_equal(other, [values[some] for values in one])
+
+
+def test_every_limit_state_is_evaluated_quickly_once():
+    quick = [state.name for quick in STANDARD.quick for state in quick.states]
+    assert sorted(quick) == sorted(state.name for state in STANDARD.limit_states)
 
 
 @settings(deadline=None, max_examples=30)

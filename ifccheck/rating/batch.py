@@ -32,12 +32,12 @@ from ifccheck.rating.assembly import (
     within,
 )
 from ifccheck.rating.elements import Elements, distinct_elements, first_greatest
-from ifccheck.rating.factors import Factors, bases_of, evaluate_everywhere, rating_factors
+from ifccheck.rating.factors import Factors, evaluate_everywhere, rating_factors
 from ifccheck.rating.subject import Subject
 from ifccheck.rating.turning import Growth, with_turns
 from ifccheck.rating.utilisation import worst_of
 from ifccheck.rating.verdict import Evaluated
-from ifccheck.standards import LimitState, Note, Options, Standard
+from ifccheck.standards import LimitState, Note, Options, Quick, Standard
 
 BATCH = 400
 """Beams rated together"""
@@ -151,11 +151,10 @@ def rate_frame(
     )
     first = stations.first_rows(len(subjects))
     elements = distinct_elements(acting, stations.beam)
-    bases = bases_of(standard.limit_states, prepared, elements.station)
-    found = [
-        evaluate_everywhere(state, basis, elements.station.size, elements.total.take)
-        for state, basis in zip(standard.limit_states, bases, strict=True)
+    evaluations = [
+        (quick, quick.basis(prepared).take(elements.station)) for quick in standard.quick
     ]
+    found = _found(standard, evaluations, elements)
     return Batch(
         subjects=tuple(subjects),
         stations=stations,
@@ -168,7 +167,7 @@ def rate_frame(
         ),
         factors={
             cases[row].name: with_turns(
-                rating_factors(standard.limit_states, bases, elements, share, stations.x),
+                rating_factors(standard.limit_states, evaluations, elements, share, stations.x),
                 Growth(frame, effects, row, factor_array(combinations, cases)),
                 standard,
                 options,
@@ -180,6 +179,18 @@ def rate_frame(
         notes=standard.notes(prepared),
         basis=standard.basis(prepared),
     )
+
+
+def _found(
+    standard: Standard, evaluations: Sequence[tuple[Quick, Any]], elements: Elements
+) -> list[tuple[Floats, Floats]]:
+    """Utilisation and resistance of each limit state of the standard at the elements."""
+    found = {}
+    for quick, basis in evaluations:
+        every = evaluate_everywhere(quick, basis, elements.station.size, elements.total.take)
+        for state, utilisation, resistance in zip(quick.states, *every, strict=True):
+            found[state.name] = utilisation, resistance
+    return [found[state.name] for state in standard.limit_states]
 
 
 def _places(

@@ -15,7 +15,7 @@ import numpy as np
 
 from ifccheck.mechanics.arrays import Bools, Demand, Floats, Ints
 from ifccheck.rating.elements import Elements, greatest_of_beams
-from ifccheck.standards import LimitState
+from ifccheck.standards import LimitState, Quick
 
 GREATEST_FACTOR = 1000.0
 """A case that does not govern up to this many times its loads is not limited."""
@@ -24,7 +24,7 @@ _MOST_STEPS = 200
 _NUMBERS = ("moment", "shear", "critical_shear", "peak_sagging", "peak_hogging")
 _TURNING = slice(0, 3)
 """Those that may change their sense"""
-_AT_ONCE = 8192
+_AT_ONCE = 32768
 """Elements evaluated together, so that their arrays stay in the processor's cache"""
 _INTERIOR = (0.1, 0.35, 0.7)
 """Fractions of the bracket at which elements that may not be monotone are looked at."""
@@ -46,11 +46,11 @@ class Factors:
 
 @dataclass(frozen=True, slots=True)
 class _Problem:
-    """One limit state under a rated case at some elements (E), sorted by beam."""
+    """Limit states (S) under a rated case at some elements (E), sorted by beam."""
 
-    state: LimitState
+    quick: Quick
     basis: Any
-    """What the limit state needs at each element"""
+    """What the limit states need at each element"""
     rest: Floats
     """The numbers of a Demand without the case (5, E)"""
     share: Floats
@@ -62,7 +62,7 @@ class _Problem:
     """What each element stands for in the batch"""
 
     def everywhere(self, factor: Floats) -> Floats:
-        """Utilisation of every element, each beam at its own factor (B).
+        """Utilisation of every element (S, E), each beam at its own factor (B).
 
         What cannot be worked out counts as exceeding.
         """
@@ -74,14 +74,14 @@ class _Problem:
             sag, hog = self.can_sag[rows], self.can_hog[rows]
             return Demand(moment, shear, critical, sagging, hogging, sag, hog)
 
-        found, _ = evaluate_everywhere(self.state, self.basis, self.beam.size, demand)
+        found, _ = evaluate_everywhere(self.quick, self.basis, self.beam.size, demand)
         found[np.isnan(found)] = np.inf
         return found
 
     def take(self, rows: Ints) -> _Problem:
         """The same at some of the elements."""
         return _Problem(
-            state=self.state,
+            quick=self.quick,
             basis=self.basis.take(rows),
             rest=self.rest[:, rows],
             share=self.share[:, rows],
@@ -93,27 +93,21 @@ class _Problem:
 
 
 def evaluate_everywhere(
-    state: LimitState, basis: Any, size: int, demand: Callable[[slice], Demand]
+    quick: Quick, basis: Any, size: int, demand: Callable[[slice], Demand]
 ) -> tuple[Floats, Floats]:
-    """Utilisation and resistance of a limit state at all elements (E), given the demand of
-    a stretch of them."""
-    utilisation, resistance = np.empty(size), np.empty(size)
+    """Utilisation and resistance of limit states at all elements (S, E), given the demand of a
+    stretch of them."""
+    utilisation, resistance = np.empty((2, len(quick.states), size))
     for start in range(0, size, _AT_ONCE):
         rows = slice(start, start + _AT_ONCE)
-        utilisation[rows], resistance[rows] = state.quick.evaluate(basis.take(rows), demand(rows))
+        for state, found in enumerate(quick.evaluate(basis.take(rows), demand(rows))):
+            utilisation[state, rows], resistance[state, rows] = found
     return utilisation, resistance
-
-
-def bases_of(states: Sequence[LimitState], prepared: Any, station: Ints) -> list[Any]:
-    """What each limit state needs at the stations of elements; one for all that share it."""
-    functions = dict.fromkeys(state.quick.basis for state in states)
-    made = {basis: basis(prepared).take(station) for basis in functions}
-    return [made[state.quick.basis] for state in states]
 
 
 def rating_factors(
     states: Sequence[LimitState],
-    bases: Sequence[Any],
+    evaluations: Sequence[tuple[Quick, Any]],
     elements: Elements,
     share: Demand,
     x: Floats,
@@ -124,9 +118,9 @@ def rating_factors(
     Parameters
     ----------
     states
-        The counted limit states.
-    bases
-        What each of them needs, at the elements (E).
+        All limit states, by which those that limit are numbered.
+    evaluations
+        Limit states, each group with what it needs at the elements (E).
     elements
         Demand of everything.
     share
@@ -142,21 +136,31 @@ def rating_factors(
         Accurate to 1e-8 relative.
     """
     beams = elements.first_of_beam.size
-    factor = np.full(beams, np.inf)
-    state_row = np.full(beams, -1, dtype=np.intp)
-    element = np.full(beams, -1, dtype=np.intp)
+    least = _Least(np.full(beams, np.inf), *np.full((2, beams), -1, dtype=np.intp))
     most = np.full(beams, GREATEST_FACTOR) if ceiling is None else ceiling
-    problems = _problems(states, bases, elements, share)
-    for row in sorted(range(len(problems)), key=lambda i: not states[i].linear):
-        found, at = _least_factor(problems[row], np.minimum(factor, most))
-        better = found < factor
-        factor[better], element[better], state_row[better] = found[better], at[better], row
-    place = np.where(element >= 0, x[element % x.size], np.nan)
-    return Factors(factor, state_row, element, place)
+    for problem in sorted(
+        _problems(evaluations, elements, share), key=lambda problem: not problem.quick.linear
+    ):
+        rows = np.array([states.index(state) for state in problem.quick.states])
+        found = _least_factor(problem, np.minimum(least.factor, most))
+        better = np.flatnonzero(found.factor < least.factor)
+        least.factor[better], least.element[better] = found.factor[better], found.element[better]
+        least.state[better] = rows[found.state[better]]
+    place = np.where(least.element >= 0, x[least.element % x.size], np.nan)
+    return Factors(least.factor, least.state, least.element, place)
+
+
+@dataclass(frozen=True, slots=True)
+class _Least:
+    """The least factor of each beam, and the limit state and the element that give it (B)."""
+
+    factor: Floats
+    state: Ints
+    element: Ints
 
 
 def _problems(
-    states: Sequence[LimitState], bases: Sequence[Any], elements: Elements, share: Demand
+    evaluations: Sequence[tuple[Quick, Any]], elements: Elements, share: Demand
 ) -> list[_Problem]:
     """The limit states at the elements of the beams that the rated case acts on."""
     moved = (share.moment != 0.0) | (share.shear != 0.0)
@@ -169,8 +173,8 @@ def _problems(
     rest = whole - part
     sag, hog = elements.total.can_sag, elements.total.can_hog
     problems = [
-        _Problem(state, basis, rest, part, sag, hog, elements.beam, elements.element)
-        for state, basis in zip(states, bases, strict=True)
+        _Problem(quick, basis, rest, part, sag, hog, elements.beam, elements.element)
+        for quick, basis in evaluations
     ]
     if reached.all():
         return problems
@@ -178,28 +182,28 @@ def _problems(
     return [problem.take(rows) for problem in problems]
 
 
-def _least_factor(problem: _Problem, ceiling: Floats) -> tuple[Floats, Ints]:
-    """Least factor below ``ceiling`` at which this limit state exceeds 1, per beam; inf if none.
+def _least_factor(problem: _Problem, ceiling: Floats) -> _Least:
+    """Least factor below ``ceiling`` at which a limit state exceeds 1, per beam; inf if none.
 
     Where utilisation need not rise throughout, the bracket is looked into at several places.
     """
-    at = np.full(ceiling.size, -1, dtype=np.intp)
     low, high = np.zeros_like(ceiling), ceiling.copy()
+    least = _Least(high, *np.full((2, ceiling.size), -1, dtype=np.intp))
     below = problem.everywhere(low)
-    _mark(at, problem, below > 1.0)
-    high[at >= 0] = 0.0
-    if not problem.state.quick.loaded:
-        return np.where(at >= 0, 0.0, np.inf), at
-    above = problem.everywhere(high)
-    over = above > 1.0
-    if not problem.state.linear:  # the greater of nothing and a straight line has no hump
-        _look_inside(problem, over, above, high)
-    rows = np.flatnonzero(over & (high[problem.beam] > 0.0))
-    if rows.size:
-        governing, below, above = problem.take(rows), below[rows], above[rows]
-        _mark(at, governing, np.ones(rows.size, dtype=np.bool_))
-        _close_in(governing, _bracket(governing, low, high, below, above), at)
-    return np.where(at >= 0, high, np.inf), at
+    _mark(least, problem, below > 1.0)
+    high[least.element >= 0] = 0.0
+    if problem.quick.loaded:
+        above = problem.everywhere(high)
+        over = np.any(above > 1.0, axis=0)
+        if not problem.quick.linear:  # the greater of nothing and a straight line has no hump
+            _look_inside(problem, over, above, high)
+        rows = np.flatnonzero(over & (high[problem.beam] > 0.0))
+        if rows.size:
+            governing, below, above = problem.take(rows), below[:, rows], above[:, rows]
+            _mark(least, governing, above > 1.0)
+            _close_in(governing, _bracket(governing, low, high, below, above), least)
+    high[least.element < 0] = np.inf
+    return least
 
 
 def _look_inside(problem: _Problem, over: Bools, above: Floats, high: Floats) -> None:
@@ -213,13 +217,13 @@ def _look_inside(problem: _Problem, over: Bools, above: Floats, high: Floats) ->
         return
     odd, bound = problem.take(rows), high.copy()
     for fraction in reversed(_INTERIOR):
-        seen = odd.everywhere(fraction * high) > 1.0
+        seen = np.any(odd.everywhere(fraction * high) > 1.0, axis=0)
         over[rows[seen]] = True
         bound[odd.beam[seen]] = fraction * high[odd.beam[seen]]
     lowered = np.flatnonzero((bound < high)[problem.beam] & over)
     high[:] = bound
     if lowered.size:
-        above[lowered] = problem.take(lowered).everywhere(high)
+        above[:, lowered] = problem.take(lowered).everywhere(high)
 
 
 def _may_turn(problem: _Problem) -> Bools:
@@ -243,24 +247,24 @@ class _Bracket:
 def _bracket(
     problem: _Problem, low: Floats, high: Floats, below: Floats, above: Floats
 ) -> _Bracket:
-    """The bracket of each beam from the utilisation of its elements at both ends (E).
+    """The bracket of each beam from the utilisation of its elements at both ends (S, E).
 
     A linear utilisation is nowhere above its chord, so that no element exceeds below the
     least factor at which a chord does.
     """
-    at_low = greatest_of_beams(below - 1.0, problem.beam, low.size)
-    at_high = greatest_of_beams(above - 1.0, problem.beam, low.size)
-    if problem.state.linear:
-        with np.errstate(invalid="ignore"):
-            crossing = (1.0 - below) / (above - below)
-        least = -greatest_of_beams(-crossing, problem.beam, low.size)
+    at_low = greatest_of_beams(below.max(axis=0) - 1.0, problem.beam, low.size)
+    at_high = greatest_of_beams(above.max(axis=0) - 1.0, problem.beam, low.size)
+    if problem.quick.linear:
+        with np.errstate(invalid="ignore", divide="ignore"):
+            crossing = np.where(above > 1.0, (1.0 - below) / (above - below), np.inf)
+        least = -greatest_of_beams(-crossing.min(axis=0), problem.beam, low.size)
         better = np.isfinite(least) & (least > _TOLERANCE)
         low[better] += (high - low)[better] * least[better] * (1.0 - _TOLERANCE)
         at_low[better] = -_TOLERANCE
     return _Bracket(low, high, at_low, at_high)
 
 
-def _close_in(problem: _Problem, bracket: _Bracket, at: Ints) -> None:
+def _close_in(problem: _Problem, bracket: _Bracket, least: _Least) -> None:
     """Narrow every beam's bracket in place, keeping only elements that can still govern.
 
     Regula falsi in its Illinois form, exact in one step where utilisation is linear; every
@@ -271,10 +275,10 @@ def _close_in(problem: _Problem, bracket: _Bracket, at: Ints) -> None:
     for step in range(1, _MOST_STEPS):
         trial = low + 0.5 * (high - low) if step % 4 == 0 else _chord(bracket)
         found = problem.everywhere(trial) - 1.0
-        excess = greatest_of_beams(found, problem.beam, low.size)
+        excess = greatest_of_beams(found.max(axis=0), problem.beam, low.size)
         over, under = excess > 0.0, (excess <= 0.0) & np.isfinite(excess)
-        hit = found > 0.0
-        _mark(at, problem, hit)
+        _mark(least, problem, found > 0.0)
+        hit = np.any(found > 0.0, axis=0)
         below[over & (last > 0)] *= 0.5
         above[under & (last < 0)] *= 0.5
         high[over], above[over], last[over] = trial[over], excess[over], 1
@@ -298,9 +302,12 @@ def _chord(bracket: _Bracket) -> Floats:
     return low + width * np.clip(share, nudge, 1.0 - nudge)
 
 
-def _mark(at: Ints, problem: _Problem, chosen: Bools) -> None:
-    """Note, for each beam, the first in the batch of some elements."""
-    beam = problem.beam[chosen]
-    if beam.size:
-        first = np.flatnonzero(np.diff(beam, prepend=-1))
-        at[beam[first]] = np.minimum.reduceat(problem.element[chosen], first)
+def _mark(least: _Least, problem: _Problem, chosen: Bools) -> None:
+    """Note, for each beam, the first limit state of those chosen (S, E), and the first of its
+    elements in the batch."""
+    for state in reversed(range(len(chosen))):
+        beam = problem.beam[chosen[state]]
+        if beam.size:
+            first = np.flatnonzero(np.diff(beam, prepend=-1))
+            elements = np.minimum.reduceat(problem.element[chosen[state]], first)
+            least.element[beam[first]], least.state[beam[first]] = elements, state

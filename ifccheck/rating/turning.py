@@ -17,7 +17,7 @@ from ifccheck.analysis.stations import StationTable, rows_before
 from ifccheck.mechanics.arrays import Bools, Floats, Ints
 from ifccheck.rating.assembly import Frame, make_station_arrays
 from ifccheck.rating.elements import distinct_elements
-from ifccheck.rating.factors import Factors, bases_of, rating_factors
+from ifccheck.rating.factors import Factors, rating_factors
 from ifccheck.standards import Options, Standard
 
 Values = TypeVar("Values", Floats, Ints)
@@ -87,16 +87,19 @@ def _factors_at(
     arrays = make_station_arrays(beam, x, side, frame.runs, frame.zones, frame.faces)
     beams, row = np.unique(beam, return_inverse=True)
     elements = distinct_elements(acting, row)
-    rows = [row for row, state in enumerate(standard.limit_states) if state.linear]
-    states = [standard.limit_states[row] for row in rows]
-    bases = bases_of(states, standard.prepare(frame.members, arrays, options), elements.station)
-    lower = rating_factors(states, bases, elements, elements.shares[0], x, found.factor[beams])
-    return _lowered(found, lower, beams, np.array(rows), growth, x.size)
+    prepared = standard.prepare(frame.members, arrays, options)
+    evaluations = [
+        (quick, quick.basis(prepared).take(elements.station))
+        for quick in standard.quick
+        if quick.linear
+    ]
+    lower = rating_factors(
+        standard.limit_states, evaluations, elements, elements.shares[0], x, found.factor[beams]
+    )
+    return _lowered(found, lower, beams, growth, x.size)
 
 
-def _lowered(
-    found: Factors, lower: Factors, beams: Ints, states: Ints, growth: Growth, places: int
-) -> Factors:
+def _lowered(found: Factors, lower: Factors, beams: Ints, growth: Growth, places: int) -> Factors:
     """The lesser factors of both; an element is named after the station before its place."""
     better = lower.factor < found.factor[beams]
     changed, cases = beams[better], growth.effects.cases
@@ -104,7 +107,7 @@ def _lowered(
     element = lower.element[better] // places * cases.x.size + station
     return Factors(
         factor=put(found.factor, changed, lower.factor[better]),
-        state=put(found.state, changed, states[lower.state[better]]),
+        state=put(found.state, changed, lower.state[better]),
         element=put(found.element, changed, element),
         x=put(found.x, changed, lower.x[better]),
     )

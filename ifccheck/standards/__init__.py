@@ -8,9 +8,11 @@ from ifccheck.standards.contract import (
     Options,
     Outside,
     Prepared,
+    Quick,
     Standard,
 )
 
 __all__ = [
-    "CalculationLine", "Check", "LimitState", "Note", "Options", "Outside", "Prepared", "Standard",
+    "CalculationLine", "Check", "LimitState", "Note", "Options", "Outside", "Prepared", "Quick",
+    "Standard",
 ]  # fmt: skip

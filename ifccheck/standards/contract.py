@@ -74,31 +74,6 @@ class CalculationLine:
 
 
 @dataclass(frozen=True, slots=True)
-class Column:
-    """A basis of one array, with a row for each station (N)."""
-
-    values: Floats
-
-    def take(self, rows: Ints | slice) -> Column:
-        """The same at the given stations; rows may repeat."""
-        return Column(self.values[rows])
-
-
-@dataclass(frozen=True, slots=True)
-class Quick:
-    """A limit state without what its calculation prints, for the many places where nothing is."""
-
-    basis: Callable[[Any], Any]
-    """What ``evaluate`` needs of a Prepared; has ``take`` like one. Limit states that share the
-    function share what it gives"""
-    evaluate: Callable[[Any, Demand], tuple[Floats, Floats]]
-    """Utilisation and resistance as Check has them, given that basis; demand and basis may hold
-    any stations in any order, so that arrays are (N)"""
-    loaded: bool = True
-    """False where the loads change nothing"""
-
-
-@dataclass(frozen=True, slots=True)
 class LimitState:
     """A way in which a beam can fall short."""
 
@@ -115,8 +90,27 @@ class LimitState:
     """Demand is linear in the loads, or nothing where that is less, and resistance does not
     depend on them."""
     check: Callable[[Any, Demand], Check]
-    quick: Quick
     lines: tuple[CalculationLine, ...]
+
+
+@dataclass(frozen=True, slots=True)
+class Quick:
+    """Limit states that have much in common, without what their calculations print: for the many
+    places where nothing is printed."""
+
+    states: tuple[LimitState, ...]
+    basis: Callable[[Any], Any]
+    """What ``evaluate`` needs of a Prepared; has ``take`` like one"""
+    evaluate: Callable[[Any, Demand], Sequence[tuple[Floats, Floats]]]
+    """Utilisation and resistance of each of them as Check has them, given that basis; demand
+    and basis may hold any stations in any order, so that arrays are (N)"""
+    loaded: bool = True
+    """False where the loads change nothing"""
+
+    @property
+    def linear(self) -> bool:
+        """All of them are linear."""
+        return all(state.linear for state in self.states)
 
 
 @dataclass(frozen=True, slots=True)
@@ -153,6 +147,8 @@ class Standard:
     """Distance of the critical section for shear from the face of a support, for stations at
     the faces [mm] (N)."""
     limit_states: tuple[LimitState, ...]
+    quick: tuple[Quick, ...]
+    """Each limit state once"""
     notes: Callable[[Any], tuple[Note, ...]]
     """Remarks on a Prepared, such as minimum reinforcement."""
     basis: Callable[[Any], dict[str, Floats]]

@@ -12,6 +12,7 @@ from ifccheck.standards.csa_a23_3_14.combinations import ACTIONS, combinations
 from ifccheck.standards.csa_a23_3_14.longitudinal import LONGITUDINAL
 from ifccheck.standards.csa_a23_3_14.materials import density_factor
 from ifccheck.standards.csa_a23_3_14.minimum_stirrups import MINIMUM_STIRRUPS, idle_stirrups
+from ifccheck.standards.csa_a23_3_14.quick import QUICK
 from ifccheck.standards.csa_a23_3_14.sections import (
     Prepared,
     critical_distance,
@@ -99,6 +100,7 @@ STANDARD = Standard(
         LONGITUDINAL,
         MINIMUM_STIRRUPS,
     ),
+    quick=QUICK,
     notes=notes,
     basis=basis,
     not_checked=(

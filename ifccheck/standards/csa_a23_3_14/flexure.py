@@ -7,11 +7,10 @@ from dataclasses import dataclass, replace
 import numpy as np
 
 from ifccheck.beam import Face
-from ifccheck.mechanics.arrays import Bools, Demand, Floats
+from ifccheck.mechanics.arrays import Bools, Demand, Floats, Ints
 from ifccheck.standards.contract import (
     CalculationLine,
     Check,
-    Column,
     LimitState,
     Note,
     Outside,
@@ -81,22 +80,6 @@ def _sagging(demand: Demand) -> Floats:
 
 def _hogging(demand: Demand) -> Floats:
     return np.maximum(-demand.moment, 0.0)
-
-
-def _soffit_resistance(prepared: Prepared) -> Column:
-    return Column(prepared.sagging.moment_resistance)
-
-
-def _top_resistance(prepared: Prepared) -> Column:
-    return Column(prepared.hogging.moment_resistance)
-
-
-def _quick_sagging(resistance: Column, demand: Demand) -> tuple[Floats, Floats]:
-    return utilisation(_sagging(demand), resistance.values), resistance.values
-
-
-def _quick_hogging(resistance: Column, demand: Demand) -> tuple[Floats, Floats]:
-    return utilisation(_hogging(demand), resistance.values), resistance.values
 
 
 def _check(prepared: Prepared, face: FaceState, moment: Floats) -> Check:
@@ -310,7 +293,6 @@ FLEXURE_SAGGING = LimitState(
     demand_unit="N*mm",
     linear=True,
     check=_check_sagging,
-    quick=Quick(_soffit_resistance, _quick_sagging),
     lines=LINES,
 )
 
@@ -322,6 +304,32 @@ FLEXURE_HOGGING = LimitState(
     demand_unit="N*mm",
     linear=True,
     check=_check_hogging,
-    quick=Quick(_top_resistance, _quick_hogging),
     lines=LINES,
 )
+
+
+@dataclass(frozen=True, slots=True)
+class _Resistances:
+    """Moment resistance with the soffit and with the top in tension; one row per station (N)."""
+
+    soffit: Floats
+    top: Floats
+
+    def take(self, rows: Ints | slice) -> _Resistances:
+        """The same at the given stations; rows may repeat."""
+        return _Resistances(self.soffit[rows], self.top[rows])
+
+
+def _resistances(prepared: Prepared) -> _Resistances:
+    return _Resistances(prepared.sagging.moment_resistance, prepared.hogging.moment_resistance)
+
+
+def _quick(resists: _Resistances, demand: Demand) -> tuple[tuple[Floats, Floats], ...]:
+    """Utilisation and resistance alone."""
+    return (
+        (utilisation(_sagging(demand), resists.soffit), resists.soffit),
+        (utilisation(_hogging(demand), resists.top), resists.top),
+    )
+
+
+QUICK_FLEXURE = Quick((FLEXURE_SAGGING, FLEXURE_HOGGING), _resistances, _quick)

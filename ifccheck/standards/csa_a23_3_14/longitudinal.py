@@ -8,7 +8,7 @@ import numpy as np
 
 from ifccheck.mechanics.angles import cotangent
 from ifccheck.mechanics.arrays import Bools, Demand, Floats
-from ifccheck.standards.contract import CalculationLine, Check, LimitState, Quick
+from ifccheck.standards.contract import CalculationLine, Check, LimitState
 from ifccheck.standards.csa_a23_3_14.sections import Prepared
 from ifccheck.standards.csa_a23_3_14.shear_check import (
     Section,
@@ -25,12 +25,10 @@ from ifccheck.standards.csa_a23_3_14.shear_lines import (
     given,
 )
 from ifccheck.standards.csa_a23_3_14.tension_face import (
-    Faces,
     utilisation_of,
     worse_face,
-    worse_quick_face,
 )
-from ifccheck.standards.csa_a23_3_14.web import Acting, Cracked, Web, acting, crack, webs
+from ifccheck.standards.csa_a23_3_14.web import Acting, Cracked, Web, acting
 
 
 def tension_side_force(
@@ -184,16 +182,10 @@ def check(prepared: Prepared, demand: Demand) -> Check:
     )
 
 
-def _quick(faces: Faces[Web], demand: Demand) -> tuple[Floats, Floats]:
-    """Utilisation and resistance alone."""
-    with np.errstate(divide="ignore", invalid="ignore", over="ignore"):
-        return worse_quick_face(faces, demand, _quick_face)
-
-
-def _quick_face(web: Web, demand: Demand) -> tuple[Floats, Floats]:
-    acts = acting(demand)
-    sides = _both_sides(web, demand, acts, crack(web, acts))
-    return np.where(web.beyond_materials, np.nan, sides.steel), sides.utilisation
+def quick_face(web: Web, demand: Demand, acts: Acting, cracked: Cracked) -> tuple[Floats, Floats]:
+    """Utilisation and resistance alone, with one face in flexural tension."""
+    sides = _both_sides(web, demand, acts, cracked)
+    return sides.utilisation, np.where(web.beyond_materials, np.nan, sides.steel)
 
 
 def _evaluate(section: Section, demand: Demand) -> tuple[LongitudinalDetails, Floats]:
@@ -324,6 +316,5 @@ LONGITUDINAL = LimitState(
     demand_unit="N",
     linear=False,
     check=check,
-    quick=Quick(webs, _quick),
     lines=(*SECTION_LINES, *STIRRUP_LINES, *CRACK_LINES, *STIRRUP_TERM_LINES, *FORCE_LINES),
 )

@@ -90,9 +90,9 @@ def _stations(prepared: Prepared) -> _Stations:
     return _Stations(_utilisation(details, prepared.inside), details.provided)
 
 
-def _quick(stations: _Stations, demand: Demand) -> tuple[Floats, Floats]:
-    """The same whatever the loads."""
-    return stations.utilisation, stations.provided
+def _quick(stations: _Stations, demand: Demand) -> tuple[tuple[Floats, Floats], ...]:
+    """Utilisation and resistance alone: the same whatever the loads."""
+    return ((stations.utilisation, stations.provided),)
 
 
 def _details(prepared: Prepared) -> MinimumStirrupDetails:
@@ -173,6 +173,7 @@ MINIMUM_STIRRUPS = LimitState(
     demand_unit="mm2/mm",
     linear=False,
     check=check,
-    quick=Quick(_stations, _quick, loaded=False),
     lines=LINES,
 )
+
+QUICK_MINIMUM_STIRRUPS = Quick((MINIMUM_STIRRUPS,), _stations, _quick, loaded=False)

@@ -8,7 +8,7 @@ from typing import Any
 import numpy as np
 
 from ifccheck.mechanics.arrays import Bools, Demand, Floats, Ints
-from ifccheck.standards.contract import Check, LimitState, Outside, Quick
+from ifccheck.standards.contract import Check, LimitState, Outside
 from ifccheck.standards.csa_a23_3_14 import shear as formulas
 from ifccheck.standards.csa_a23_3_14.sections import Prepared
 from ifccheck.standards.csa_a23_3_14.shear_lines import SHEAR_LINES
@@ -17,7 +17,6 @@ from ifccheck.standards.csa_a23_3_14.tension_face import (
     Faces,
     utilisation_of,
     worse_face,
-    worse_quick_face,
 )
 from ifccheck.standards.csa_a23_3_14.web import (
     Acting,
@@ -27,7 +26,6 @@ from ifccheck.standards.csa_a23_3_14.web import (
     crack,
     minimum_area,
     web,
-    webs,
 )
 
 
@@ -170,17 +168,10 @@ def _resistance(web: Web, cracked: Cracked, concrete: _Concrete) -> Floats:
     return np.where(outside, np.nan, np.where(cracked.has_steel, resistance, 0.0))
 
 
-def _quick_face(web: Web, demand: Demand) -> tuple[Floats, Floats]:
-    acts = acting(demand)
-    cracked = crack(web, acts)
+def quick_face(web: Web, acts: Acting, cracked: Cracked) -> tuple[Floats, Floats]:
+    """Utilisation and resistance alone, with one face in tension."""
     resistance = _resistance(web, cracked, _concrete(web, cracked))
-    return resistance, utilisation_of(acts.shear, resistance, web.inside)
-
-
-def _quick(faces: Faces[Web], demand: Demand) -> tuple[Floats, Floats]:
-    """Utilisation and resistance alone."""
-    with np.errstate(divide="ignore", invalid="ignore", over="ignore"):
-        return worse_quick_face(faces, demand, _quick_face)
+    return utilisation_of(acts.shear, resistance, web.inside), resistance
 
 
 def evaluate(section: Section, demand: Demand) -> tuple[ShearDetails, Cracked]:
@@ -315,6 +306,5 @@ SHEAR = LimitState(
     demand_unit="N",
     linear=False,
     check=check,
-    quick=Quick(webs, _quick),
     lines=SHEAR_LINES,
 )

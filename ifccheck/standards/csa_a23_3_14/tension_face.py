@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable
+from collections.abc import Callable, Sequence
 from dataclasses import dataclass, fields
 from typing import Any, Generic, Protocol, Self, TypeVar
 
@@ -113,58 +113,45 @@ def worse_face(
     ``evaluate(face, demand)`` gives the details and the utilisation. A face that cannot be
     evaluated is worse than one that suffices and better than one that falls short.
     """
-    found = _both_faces(faces, demand, evaluate)
-    details = DetailsOfBothFaces(
-        found.first, found.second, found.places, found.taken, found.utilisation.shape
-    )
-    return details, found.utilisation
-
-
-def worse_quick_face(
-    faces: Faces[AnyFace],
-    demand: Demand,
-    evaluate: Callable[[AnyFace, Demand], tuple[Floats, Floats]],
-) -> tuple[Floats, Floats]:
-    """Utilisation and resistance with the worse face in tension.
-
-    ``evaluate(face, demand)`` gives the resistance and the utilisation.
-    """
-    evaluation = _both_faces(faces, demand, evaluate)
-    if evaluation.second is None:
-        return evaluation.utilisation, evaluation.first
-    places, taken = evaluation.places, evaluation.taken
-    resistance = np.broadcast_to(evaluation.first, evaluation.utilisation.shape)
-    return evaluation.utilisation, put(resistance, places, evaluation.second[taken])
-
-
-@dataclass(frozen=True, slots=True)
-class _BothFaces:
-    """What two faces gave; ``taken`` of the places where the top is tried are ``places``."""
-
-    first: Any
-    second: Any
-    places: tuple[Ints, ...]
-    taken: Bools
-    utilisation: Floats
-
-
-def _both_faces(
-    faces: Faces[AnyFace],
-    demand: Demand,
-    evaluate: Callable[[AnyFace, Demand], tuple[Any, Floats]],
-) -> _BothFaces:
-    """Evaluate the face in tension, both where both may be, and find the worse."""
     soffit, top = faces_in_tension(faces, demand)
-    first, utilisation = evaluate(faces.soffit, demand)
-    tried = np.nonzero(top)
+    details, utilisation = evaluate(faces.soffit, demand)
+    shape, tried = utilisation.shape, np.nonzero(top)
     if tried[0].size == 0:
-        return _BothFaces(first, None, (), np.zeros(0, dtype=np.bool_), utilisation)
+        nowhere = np.zeros(0, dtype=np.bool_)
+        return DetailsOfBothFaces(details, None, (), nowhere, shape), utilisation
     second, second_utilisation = evaluate(faces.top_at(tried[-1]), demand.at(tried))
-    worse = _severity(second_utilisation) > _severity(utilisation[tried])
-    taken = worse | ~soffit[tried]
+    taken = _worse(second_utilisation, utilisation[tried]) | ~soffit[tried]
     places = tuple(index[taken] for index in tried)
-    whole = put(utilisation, places, second_utilisation[taken])
-    return _BothFaces(first, second, places, taken, whole)
+    return (
+        DetailsOfBothFaces(details, second, places, taken, shape),
+        put(utilisation, places, second_utilisation[taken]),
+    )
+
+
+def worse_faces(
+    faces: Faces[AnyFace],
+    demand: Demand,
+    evaluate: Callable[[AnyFace, Demand], Sequence[tuple[Floats, Floats]]],
+) -> list[tuple[Floats, Floats]]:
+    """Utilisation and resistance of several limit states, each with its worse face in tension.
+
+    ``evaluate(face, demand)`` gives those of one face.
+    """
+    soffit, top = faces_in_tension(faces, demand)
+    first, tried = evaluate(faces.soffit, demand), np.flatnonzero(top)
+    if not tried.size:
+        return list(first)
+    found = []
+    second = evaluate(faces.top_at(tried), demand.take(tried))
+    for (one, resistance), (other, other_resistance) in zip(first, second, strict=True):
+        taken = _worse(other, one[tried]) | ~soffit[tried]
+        rows = (tried[taken],)
+        found.append((put(one, rows, other[taken]), put(resistance, rows, other_resistance[taken])))
+    return found
+
+
+def _worse(utilisation: Floats, other: Floats) -> Bools:
+    return _severity(utilisation) > _severity(other)
 
 
 def put(values: Values, places: tuple[Ints, ...], others: Values) -> Values:
