@@ -1,71 +1,102 @@
-"""The plainest bars of a model followed all at once: bars that are moved, not turned, and whose
-shape is one item."""
+"""Where bars stand and which shape they have, of those that are moved, not turned, and whose shape
+is one item: all followed at once."""
 
 from __future__ import annotations
 
-from collections.abc import Iterator, Sequence
-from typing import NamedTuple
+from dataclasses import dataclass
 
 import numpy as np
 
-from ifccheck.ifc.bar_paths import Floats, Ints
+from ifccheck.ifc.bar_paths import Bools, Floats, Ints
 from ifccheck.ifc.step_table import StepTable
 
 
-class Chain(NamedTuple):
-    """Where a plain bar stands and which shape it has."""
+@dataclass(frozen=True, slots=True)
+class Chains:
+    """Where plain bars stand and which shape they have (P)."""
 
-    parent: int
-    """STEP id of the placement that it is moved in; 0 for the building itself."""
-    move: Sequence[float]
-    """In units of the model."""
-    item: int
+    place: Ints
+    """Which of the bars asked for each is."""
+    parent: Ints
+    """STEP id of the placement that each is moved in; 0 for the building itself."""
+    move: Floats
+    """In units of the model (P, 3)."""
+    item: Ints
     """STEP id of its item."""
-    source: int
+    source: Ints
     """STEP ids of what is mapped and of how; 0 where the item is not mapped."""
-    target: int
+    target: Ints
 
 
-def follow_chains(table: StepTable, bars: Sequence[int]) -> Iterator[Chain | None]:
-    """Follow bars by their STEP ids; None for one that is not of the plainest form."""
-    references = table.references(table.rows(np.array(bars, dtype=np.intp)))
-    placement, shape = references.at(-2), references.at(-1)
-    parent, move = _places(table, placement)
-    item, source, target = _items(table, shape)
-    plain = ~np.isnan(move).any(axis=1) & (item > 0)
-    columns = (plain, parent, move, item, source, target)
-    for is_plain, *values in zip(*(column.tolist() for column in columns), strict=True):
-        yield Chain(*values) if is_plain else None
+def follow_chains(table: StepTable, placement: Ints, shape: Ints) -> Chains:
+    """Follow the placements and the shapes of bars by their STEP ids, 0 for none."""
+    moved, parent, move = _places(table, placement)
+    single, item = _items(table, shape)
+    plain = np.flatnonzero(moved & single)
+    mapped, source, target = _mapped(table, item[plain])
+    return Chains(
+        place=plain,
+        parent=parent[plain],
+        move=move[plain],
+        item=item[plain],
+        source=np.where(mapped, source, 0),
+        target=np.where(mapped, target, 0),
+    )
 
 
-def _places(table: StepTable, placement: Ints) -> tuple[Ints, Floats]:
-    """The parent of each placement and its move; nan where it turns or is of another kind."""
-    rows = table.rows(placement)
-    references = table.references(rows)
-    is_local = table.named(rows, "IFCLOCALPLACEMENT") & (references.count >= 1)
-    parent = np.where(references.count == 2, references.at(0), 0)
-    axes = table.rows(references.at(-1))
-    points = table.references(axes)
-    moved = is_local & (references.count <= 2)
-    moved &= table.named(axes, "IFCAXIS2PLACEMENT3D") & (points.count == 1)
-    place = table.rows(points.at(0))
-    moved &= table.named(place, "IFCCARTESIANPOINT")
-    move = np.full((len(rows), 3), np.nan)
-    move[moved] = table.coordinates(place[moved])
-    return parent, move
+def _places(table: StepTable, placement: Ints) -> tuple[Bools, Ints, Floats]:
+    """Whether each placement only moves, its parent and its move."""
+    local = table.cursors(placement, "IFCLOCALPLACEMENT")
+    parent = local.reference_or_nothing()
+    local.tokens(b",")
+    position = local.reference()
+    local.tokens(b")", b";")
+    axes = table.cursors(np.where(local.plain, position, 0), "IFCAXIS2PLACEMENT3D")
+    location = axes.reference()
+    axes.tokens(b",", b"$", b",", b"$", b")", b";")
+    found, move = read_points(table, np.where(axes.plain, location, 0))
+    return found, parent, move
 
 
-def _items(table: StepTable, shape: Ints) -> tuple[Ints, Ints, Ints]:
-    """The only item of each shape, and of a mapped one its source and target; else 0."""
-    rows = table.rows(shape)
-    representations = table.references(rows)
-    single = table.named(rows, "IFCPRODUCTDEFINITIONSHAPE") & (representations.count == 1)
-    body = table.rows(representations.at(0))
-    items = table.references(body)
-    single &= table.named(body, "IFCSHAPEREPRESENTATION") & (items.count == 2)
-    item = np.where(single, items.at(1), 0)
-    item_rows = table.rows(item)
-    mapped = single & table.named(item_rows, "IFCMAPPEDITEM")
-    parts = table.references(item_rows)
-    source, target = (np.where(mapped, parts.at(k), 0) for k in (0, 1))
-    return item, source, target
+def read_points(table: StepTable, ids: Ints) -> tuple[Bools, Floats]:
+    """Read points in space by their STEP ids: which are, and their coordinates (N, 3)."""
+    point = table.cursors(ids, "IFCCARTESIANPOINT")
+    point.tokens(b"(")
+    x = point.number()
+    point.tokens(b",")
+    y = point.number()
+    point.tokens(b",")
+    z = point.number()
+    point.tokens(b")", b")", b";")
+    return point.plain, np.stack((x, y, z), axis=1)
+
+
+def _items(table: StepTable, shape: Ints) -> tuple[Bools, Ints]:
+    """Whether each shape is one item, and that."""
+    product = table.cursors(shape, "IFCPRODUCTDEFINITIONSHAPE")
+    product.text_or_nothing()
+    product.tokens(b",")
+    product.text_or_nothing()
+    product.tokens(b",", b"(")
+    representation = product.reference()
+    product.tokens(b")", b")", b";")
+    body = table.cursors(np.where(product.plain, representation, 0), "IFCSHAPEREPRESENTATION")
+    body.reference_or_nothing()
+    body.tokens(b",")
+    body.text_or_nothing()
+    body.tokens(b",")
+    body.text_or_nothing()
+    body.tokens(b",", b"(")
+    item = body.reference()
+    body.tokens(b")", b")", b";")
+    return body.plain, np.where(body.plain, item, 0)
+
+
+def _mapped(table: StepTable, item: Ints) -> tuple[Bools, Ints, Ints]:
+    """Whether each item is mapped, its source and its target."""
+    mapped = table.cursors(item, "IFCMAPPEDITEM")
+    source = mapped.reference()
+    mapped.tokens(b",")
+    target = mapped.reference()
+    mapped.tokens(b")", b";")
+    return mapped.plain, source, target

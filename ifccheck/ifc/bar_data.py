@@ -64,6 +64,8 @@ class Data:
 
 NO_HINTS, NO_TYPE = _Hints(), _Type()
 NOTHING_SAID = (None, None, None, None)
+Related = tuple[int | None, int | None, tuple[int, ...] | None]
+"""STEP ids of the type, the material and the property sets."""
 
 
 class BarData:
@@ -82,21 +84,38 @@ class BarData:
     def of(self, product: Entity, step_id: int, name: str, swept: float | None) -> Data:
         """Return what is settled of a bar."""
         argument = product.get_argument
-        relations = self._context.relations
-        type_id = relations.types.get(step_id)
-        sets = relations.property_sets(step_id) if type_id else relations.sets.get(step_id)
         if product.is_a() == "IfcReinforcingBar":
             said = (argument(8), argument(9), argument(10), argument(12))
         else:
             said = NOTHING_SAID
-        named = self._named(name) if "M" in name or "#" in name else ""
-        material = relations.materials.get(step_id) or relations.materials.get(type_id or 0)
-        told = None if sets is None else tuple(sets)
-        key = (said, argument(4), named, type_id, material, told, swept)
+        related = self.related(step_id)
+        key = (said, argument(4), self.size_in(name), *related, swept)
         data = self._settled.get(key)
         if data is None:
             data = self._settled[key] = self._settle(step_id, *key)
         return data
+
+    def related(self, step_id: int) -> Related:
+        """Return the type, the material and the property sets of a bar."""
+        relations = self._context.relations
+        type_id = relations.types.get(step_id)
+        sets = relations.property_sets(step_id) if type_id else relations.sets.get(step_id)
+        material = relations.materials.get(step_id) or relations.materials.get(type_id or 0)
+        return type_id, material, None if sets is None else tuple(sets)
+
+    def all_related(self, step_ids: Iterable[int]) -> list[Related]:
+        """Return the same of many bars, most of which have a material at best."""
+        relations = self._context.relations
+        some = relations.types.keys() | relations.sets.keys()
+        materials = relations.materials
+        return [
+            self.related(one) if one in some else (None, materials.get(one), None)
+            for one in step_ids
+        ]
+
+    def size_in(self, name: str) -> str:
+        """The bar size in the name of a bar."""
+        return self._named(name) if "M" in name or "#" in name else ""
 
     def _settle(
         self,

@@ -5,8 +5,13 @@ from __future__ import annotations
 from collections import defaultdict
 from collections.abc import Collection, Mapping, Sequence
 from dataclasses import dataclass
+from functools import cached_property
+from itertools import chain
 from typing import Any, Literal
 
+import numpy as np
+
+from ifccheck.ifc.bar_paths import Bools, Ints
 from ifccheck.ifc.relations import Relations
 
 Tie = Literal["part", "beside", "elsewhere", "loose"]
@@ -23,6 +28,27 @@ class Host:
     beams: tuple[int, ...] = ()
 
 
+@dataclass(frozen=True, slots=True)
+class BarHosts:
+    """How many bars are tied: distinct hosts, and which of them each bar has (N)."""
+
+    hosts: Sequence[Host]
+    number: Ints
+
+    def take(self, kept: Ints | Bools) -> BarHosts:
+        """Those of some of the bars."""
+        return BarHosts(self.hosts, self.number[kept])
+
+    def tied(self, *ties: Tie) -> Bools:
+        """Whether each bar is tied in one of some ways."""
+        of_hosts = np.array([host.tie in ties for host in self.hosts], dtype=bool)
+        return np.asarray(of_hosts[self.number])
+
+    def of(self, bar: int) -> Host:
+        """How a bar is tied."""
+        return self.hosts[int(self.number[bar])]
+
+
 LOOSE = Host("loose")
 ELSEWHERE = Host("elsewhere")
 
@@ -34,8 +60,11 @@ class Hosts:
         self._file = file
         self._relations = relations
         self._beams = frozenset(beams)
-        self._wholes = _all_wholes(relations.parts)
         self._known: dict[int, Host] = {}
+
+    @cached_property
+    def _wholes(self) -> Mapping[int, Sequence[int]]:
+        return _all_wholes(self._relations.parts)
 
     def of(self, step_id: int) -> Host:
         """Return how an element is tied to the beams."""
@@ -45,6 +74,32 @@ class Hosts:
         if len(wholes) == 1:
             return self._through(wholes[0], frozenset((step_id,)))
         return _strongest([self._through(whole, frozenset((step_id,))) for whole in wholes])
+
+    def of_all(self, step_ids: Ints) -> BarHosts:
+        """Return the same of many elements, most of which are parts of one whole."""
+        count, whole = self._only_wholes(step_ids)
+        hosts = [LOOSE]
+        number = np.zeros(len(step_ids), dtype=np.intp)
+        single = np.flatnonzero(count == 1)
+        wholes, first, inverse = np.unique(whole[single], return_index=True, return_inverse=True)
+        number[single] = len(hosts) + inverse.reshape(-1)
+        for at, row in zip(wholes.tolist(), single[first].tolist(), strict=True):
+            hosts.append(self._through(at, frozenset((int(step_ids[row]),))))
+        for row in np.flatnonzero(count > 1).tolist():
+            number[row] = len(hosts)
+            hosts.append(self.of(int(step_ids[row])))
+        return BarHosts(hosts, number)
+
+    def _only_wholes(self, step_ids: Ints) -> tuple[Ints, Ints]:
+        """How often each element is named as a part, and the whole that names it first."""
+        parts = self._relations.parts
+        part = np.fromiter(chain.from_iterable(parts.values()), dtype=np.intp)
+        counts = [len(members) for members in parts.values()]
+        whole = np.repeat(np.fromiter(parts, dtype=np.intp, count=len(parts)), counts)
+        order = np.argsort(part, kind="stable")
+        first, last = (np.searchsorted(part[order], step_ids, side) for side in ("left", "right"))
+        known = np.append(whole[order], 0)
+        return last - first, known[first]
 
     def _through(self, whole: int, seen: frozenset[int]) -> Host:
         if whole in seen:

@@ -1,9 +1,9 @@
-"""Curves that bars are swept along: read from the model, then sampled in one batch."""
+"""Curves that bars are swept along, read from the model."""
 
 from __future__ import annotations
 
 import math
-from collections.abc import Callable, Iterable, Iterator, Sequence
+from collections.abc import Callable, Iterable, Sequence
 from dataclasses import dataclass
 from typing import Any
 
@@ -21,8 +21,6 @@ Point = tuple[float, float, float]
 
 JOINT_GAP = 1.0
 """Greatest gap [mm] between two segments of one curve."""
-CHORD_ANGLE = math.pi / 7.0
-"""Greatest angle [rad] that one chord of a sampled arc spans."""
 LONGEST_ARC = 1.9 * math.pi
 """Greatest angle [rad] that three points describe well."""
 STRAIGHT_ON = 1e-4
@@ -137,7 +135,7 @@ def path_length(path: Path) -> float:
     steps = np.sqrt((np.diff(points, axis=0) ** 2).sum(axis=1))
     if path.arcs:
         starts = np.array(path.arcs, dtype=np.intp)
-        _, across, _, half = _arc_frames(points, starts)
+        _, across, _, half = arc_frames(points, starts)
         radius = np.sqrt((across**2).sum(axis=1))
         for step in (0, 1):
             steps[starts + step] = np.maximum(steps[starts + step], radius * half[:, step])
@@ -279,60 +277,7 @@ _READERS: dict[str, Callable[[Entity, ModelUnits], Path]] = {
 }
 
 
-@dataclass(frozen=True, slots=True)
-class Samples:
-    """Many centre lines as points one after another."""
-
-    points: Floats
-    """(N, 3) [mm]"""
-    arc: Bools
-    """Whether the step from each point to the next is a chord of an arc (N); false at ends."""
-    first: Ints
-    """Index of the first point of each line, and the number of points at the end (n + 1)."""
-
-
-def sample(paths: Sequence[Path]) -> Samples:
-    """Sample centre lines into points: straight parts by their ends, arcs by chords."""
-    counts = np.array([len(path.points) for path in paths], dtype=np.intp)
-    first = np.concatenate(([0], np.cumsum(counts)))
-    points = np.array([point for path in paths for point in path.points], dtype=float)
-    points = points.reshape(-1, 3)
-    starts = np.fromiter(_arc_starts(paths, first), dtype=np.intp)
-    if not starts.size:
-        return Samples(points, np.zeros(len(points), dtype=bool), first)
-    return _with_arcs(points, first, starts)
-
-
-def _arc_starts(paths: Sequence[Path], first: Ints) -> Iterator[int]:
-    for path, offset in zip(paths, first.tolist(), strict=False):
-        for index in path.arcs:
-            yield offset + index
-
-
-def _with_arcs(points: Floats, first: Ints, starts: Ints) -> Samples:
-    """Put chords in the place of the two steps of every arc."""
-    centre, across, turned, half = _arc_frames(points, starts)
-    chords = np.ceil(half / CHORD_ANGLE - 1e-9).astype(np.intp)  # (arcs, 2)
-    count = np.ones(len(points), dtype=np.intp)
-    owner = np.full(len(points), -1, dtype=np.intp)
-    for step in (0, 1):
-        count[starts + step] = np.maximum(chords[:, step], 1)
-        owner[starts + step] = np.where(chords[:, step] > 0, np.arange(len(starts)), -1)
-    begin = np.concatenate(([0], np.cumsum(count)))
-    source = np.repeat(np.arange(len(points)), count)
-    within = np.arange(len(source)) - begin[source]
-    sampled = points[source]
-    inner = np.flatnonzero(within > 0)
-    arc, origin = owner[source[inner]], source[inner]
-    second = (origin != starts[arc]).astype(np.intp)
-    angle = within[inner] / count[origin] * half[arc, second] + second * half[arc, 0]
-    sampled[inner] = (
-        centre[arc] + np.cos(angle)[:, None] * across[arc] + np.sin(angle)[:, None] * turned[arc]
-    )
-    return Samples(sampled, owner[source] >= 0, begin[first])
-
-
-def _arc_frames(points: Floats, starts: Ints) -> tuple[Floats, Floats, Floats, Floats]:
+def arc_frames(points: Floats, starts: Ints) -> tuple[Floats, Floats, Floats, Floats]:
     """Centre, radius vectors at and square to the start, and the angle of each half (arcs, 2).
 
     Three points on one line are no arc: their halves have the angle 0.

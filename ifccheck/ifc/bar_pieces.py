@@ -8,7 +8,8 @@ from dataclasses import dataclass
 import numpy as np
 import numpy.typing as npt
 
-from ifccheck.ifc.bar_paths import Bools, Floats, Ints, Samples
+from ifccheck.ifc.bar_paths import Bools, Floats, Ints
+from ifccheck.ifc.bar_samples import Samples
 
 LEAST_STEP = 1e-3
 """Shorter steps [mm] of a centre line are left out."""

@@ -2,15 +2,15 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator, Mapping
 from dataclasses import dataclass
 
 import numpy as np
 import numpy.typing as npt
 
-from ifccheck.ifc.bar_hosts import Host
-from ifccheck.ifc.bar_paths import Bools, Floats, Ints, Samples, sample
+from ifccheck.ifc.bar_hosts import BarHosts, Tie
+from ifccheck.ifc.bar_paths import Bools, Floats, Ints
 from ifccheck.ifc.bar_pieces import CentreLines, cut_into_pieces, place
+from ifccheck.ifc.bar_samples import Samples, offsets, sample, spread
 from ifccheck.ifc.bar_table import BarTable
 from ifccheck.ifc.beam_frames import BeamFrames, part_inside
 
@@ -41,6 +41,9 @@ class Rows:
         return Rows(self.strand[kept], self.beam[kept])
 
 
+NO_ROWS = Rows(np.zeros(0, dtype=np.intp), np.zeros(0, dtype=np.intp))
+
+
 @dataclass(frozen=True, slots=True)
 class Found:
     """Strands by beam."""
@@ -60,17 +63,15 @@ class BarPlaces:
         self.table = table
         self.frames = frames
         self.samples: Samples = sample(table.paths)
-        columns = np.array([(bar.size, bar.grade) for bar in table.bars], dtype=np.intp)
-        sizes, grades = columns.reshape(-1, 2).T
-        self.size: Ints = sizes[table.bar]
-        self.grade: Ints = grades[table.bar]
+        self.size: Ints = table.size[table.bar]
+        self.grade: Ints = table.grade[table.bar]
         """Size and grade of each strand."""
         thick = np.array([size.diameter for size in table.sizes], dtype=float)
         self.diameter: Floats = thick[self.size]
 
     def label(self, strand: int) -> str:
         """What people call the bar of a strand."""
-        return self.table.bars[int(self.table.bar[strand])].label
+        return self.table.label(int(self.table.bar[strand]))
 
     def motions(self, rows: Rows) -> tuple[Floats, Floats]:
         """Rotations (R, 3, 3) and translations (R, 3) of strands into the axes of their beams."""
@@ -126,9 +127,10 @@ def _first_of_each(key: npt.NDArray[np.int64]) -> tuple[Ints, Ints]:
     return first, inverse.reshape(-1)
 
 
-def find_rows(places: BarPlaces, hosts: Mapping[int, Host]) -> Found:
-    """Find the beams of all strands; ``hosts`` by the STEP id of the bar."""
-    tied = _rows(list(_candidates(places, hosts, "part")))
+def find_rows(places: BarPlaces, hosts: BarHosts) -> Found:
+    """Find the beams of all strands; ``hosts`` of the bars of the table."""
+    hosts = hosts.take(places.table.bar)
+    tied = _candidates(places, hosts, "part")
     beside, astray = _beside(places, hosts)
     strand, beam = (
         np.concatenate(pair) for pair in ((tied.strand, beside.strand), (tied.beam, beside.beam))
@@ -136,49 +138,36 @@ def find_rows(places: BarPlaces, hosts: Mapping[int, Host]) -> Found:
     return Found(Rows(strand, beam), astray, _noticed(places, hosts))
 
 
-def _candidates(
-    places: BarPlaces, hosts: Mapping[int, Host], tie: str, most: int | None = None
-) -> Iterator[tuple[int, int]]:
+def _candidates(places: BarPlaces, hosts: BarHosts, tie: Tie, most: int | None = None) -> Rows:
     """Strands of one tie with each of their beams, those with more than ``most`` left out."""
     index = places.frames.index()
-    bars = places.table.bars
-    for strand, bar in enumerate(places.table.bar.tolist()):
-        host = hosts[bars[bar].step_id]
-        if host.tie == tie and (most is None or len(host.beams) <= most):
-            for beam in host.beams:
-                yield strand, index[beam]
+    count = np.array([len(host.beams) for host in hosts.hosts], dtype=np.intp)
+    beams = np.array([index[beam] for host in hosts.hosts for beam in host.beams], dtype=np.intp)
+    chosen = np.flatnonzero(hosts.tied(tie))
+    if most is not None:
+        chosen = chosen[count[hosts.number[chosen]] <= most]
+    host = hosts.number[chosen]
+    row, within = spread(count[host])
+    return Rows(chosen[row], beams[offsets(count)[host[row]] + within])
 
 
-def _beside(places: BarPlaces, hosts: Mapping[int, Host]) -> tuple[Rows, Rows]:
+def _beside(places: BarPlaces, hosts: BarHosts) -> tuple[Rows, Rows]:
     """Of the beams beside each strand the one that holds most of it, and strands in none.
 
     Where an assembly holds many beams, a strand in none of them is nothing to tell each of them.
     """
-    strands = _strands(places, hosts, "beside")
+    strands = np.flatnonzero(hosts.tied("beside"))
     if not len(strands):
-        return _rows([]), _rows([])
-    bars, index = places.table.bars, places.frames.index()
+        return NO_ROWS, NO_ROWS
+    index = places.frames.index()
     near = _overlapping(places, strands)
     own = [
-        beam in {index[one] for one in hosts[bars[bar].step_id].beams}
-        for bar, beam in zip(
-            places.table.bar[near.strand].tolist(), near.beam.tolist(), strict=True
-        )
+        beam in {index[one] for one in hosts.of(strand).beams}
+        for strand, beam in zip(near.strand.tolist(), near.beam.tolist(), strict=True)
     ]
     held = _fullest(places, near.take(np.array(own, dtype=bool)))
-    listed = _rows(list(_candidates(places, hosts, "beside", MOST_TOLD)))
+    listed = _candidates(places, hosts, "beside", MOST_TOLD)
     return held, listed.take(~np.isin(listed.strand, held.strand))
-
-
-def _strands(places: BarPlaces, hosts: Mapping[int, Host], tie: str) -> Ints:
-    """The strands of bars of one tie."""
-    of_tie = np.array([hosts[bar.step_id].tie == tie for bar in places.table.bars], dtype=bool)
-    return np.flatnonzero(of_tie[places.table.bar]) if len(of_tie) else np.zeros(0, dtype=np.intp)
-
-
-def _rows(pairs: list[tuple[int, int]]) -> Rows:
-    strand, beam = np.array(pairs, dtype=np.intp).reshape(-1, 2).T
-    return Rows(strand, beam)
 
 
 def _inside(places: BarPlaces, rows: Rows) -> tuple[Floats, Floats]:
@@ -209,10 +198,10 @@ def _fullest(places: BarPlaces, rows: Rows) -> Rows:
     return rows.take(first[share[first] >= INSIDE_SHARE])
 
 
-def _noticed(places: BarPlaces, hosts: Mapping[int, Host]) -> Rows:
-    strands = _strands(places, hosts, "loose")
+def _noticed(places: BarPlaces, hosts: BarHosts) -> Rows:
+    strands = np.flatnonzero(hosts.tied("loose"))
     if not len(strands):
-        return _rows([])
+        return NO_ROWS
     rows = _overlapping(places, strands)
     share, along = _inside(places, rows)
     least = np.maximum(NOTICED_RUN * places.diameter[rows.strand], NOTICED_LENGTH)

@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
-from contextlib import suppress
 from dataclasses import dataclass
 from typing import Any
 
@@ -71,11 +70,6 @@ class BarShapes:
             return known or self._item(file.by_id(item), 0)
         known = self._mapped_strands.get((source, target))
         return known or self._mapped(file.by_id(source), file.by_id(target), 0)
-
-    def add_swept(self, item: int, path: Path, diameter: float) -> None:
-        """Take a swept solid that is already read, by its STEP id."""
-        with suppress(UnreadableError):  # it is told when a bar asks for it
-            self._solids[item] = (self._strand(path, IDENTITY, diameter),)
 
     def _representation(self, representation: Entity | None, depth: int) -> tuple[Strand, ...]:
         items: tuple[Entity, ...] = ()

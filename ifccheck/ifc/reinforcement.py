@@ -9,7 +9,8 @@ import numpy as np
 
 from ifccheck.beam import Reason, Reinforcement, Remark
 from ifccheck.ifc.bar_findings import Findings
-from ifccheck.ifc.bar_hosts import Host, Hosts
+from ifccheck.ifc.bar_hosts import BarHosts, Hosts
+from ifccheck.ifc.bar_paths import Ints
 from ifccheck.ifc.bar_rows import BarPlaces, Rows, find_rows
 from ifccheck.ifc.bar_table import BarTable, gather_bars
 from ifccheck.ifc.beam_frames import BeamFrames, make_frames
@@ -77,11 +78,11 @@ def _physical(
     findings = Findings(lambda beam: str(context.file.by_id(frames.ids[beam])[0]))
     finder = Hosts(context.file, context.relations, hosts)
     _tell_meshes(context, finder, frames, findings)
-    products, ties = _tied_bars(context, finder)
-    table = gather_bars(context, products, statements)
+    bars, ties = _tied_bars(context, finder)
+    table = gather_bars(context, bars, statements)
     places = BarPlaces(table, frames)
-    found = find_rows(places, ties)
-    _tell_unreadable(table, ties, frames, findings)
+    found = find_rows(places, ties.take(table.product))
+    _tell_unreadable(table, bars, ties, frames, findings)
     _tell_astray(places, found.astray, findings)
     physical = reduce_bars(places, found.tied, findings)
     _tell_without_main_bars(found.tied, physical, findings)
@@ -89,29 +90,23 @@ def _physical(
     return _collected(frames, physical, findings, described)
 
 
-def _tied_bars(context: Context, finder: Hosts) -> tuple[list[Entity], dict[int, Host]]:
-    """Bars that may lie in one of the beams, and how each is tied."""
-    products: list[Entity] = []
-    ties: dict[int, Host] = {}
-    for product in _bars(context):
-        step_id = product.id()
-        host = finder.of(step_id)
-        if host.tie != "elsewhere":
-            products.append(product)
-            ties[step_id] = host
-    return products, ties
+def _tied_bars(context: Context, finder: Hosts) -> tuple[Ints, BarHosts]:
+    """Bars that may lie in one of the beams, by STEP ids, and how each is tied."""
+    bars = np.fromiter(_bars(context), dtype=np.intp)
+    ties = finder.of_all(bars)
+    near = ~ties.tied("elsewhere")
+    return bars[near], ties.take(near)
 
 
-def _bars(context: Context) -> Iterator[Entity]:
-    """Bars, and other elements whose type is that of a bar."""
-    yield from context.file.by_type("IfcReinforcingBar")
+def _bars(context: Context) -> Iterator[int]:
+    """STEP ids of bars, and of other elements whose type is that of a bar."""
+    for bar in context.file.by_type("IfcReinforcingBar"):
+        yield bar.id()
     types = {entity.id() for entity in _instances(context, "IfcReinforcingBarType")}
     if types:
         for step_id, type_id in context.relations.types.items():
-            if type_id in types:
-                product = context.file.by_id(step_id)
-                if not product.is_a("IfcReinforcingBar"):
-                    yield product
+            if type_id in types and not context.file.by_id(step_id).is_a("IfcReinforcingBar"):
+                yield step_id
 
 
 def _tell_meshes(context: Context, finder: Hosts, frames: BeamFrames, findings: Findings) -> None:
@@ -124,12 +119,12 @@ def _tell_meshes(context: Context, finder: Hosts, frames: BeamFrames, findings: 
 
 
 def _tell_unreadable(
-    table: BarTable, ties: Mapping[int, Host], frames: BeamFrames, findings: Findings
+    table: BarTable, bars: Ints, ties: BarHosts, frames: BeamFrames, findings: Findings
 ) -> None:
     index = frames.index()
-    for step_id, text in table.unreadable.items():
-        for beam in ties[step_id].beams:
-            findings.reason(index[beam], text, (f"#{step_id}",))
+    for bar, text in table.unreadable.items():
+        for beam in ties.of(bar).beams:
+            findings.reason(index[beam], text, (f"#{bars[bar]}",))
 
 
 def _tell_astray(places: BarPlaces, astray: Rows, findings: Findings) -> None:

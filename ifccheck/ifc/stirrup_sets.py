@@ -10,6 +10,7 @@ import numpy as np
 
 from ifccheck.ifc.bar_paths import Bools, Floats, Ints
 from ifccheck.ifc.bar_pieces import CentreLines, Pieces, count_by_row
+from ifccheck.ifc.bar_samples import offsets, spread
 
 SQUARE_DIAMETERS, SQUARE_SLOPE = 3.0, 0.1
 """A stirrup reaches along the beam by no more than this many diameters, or this part of its
@@ -138,17 +139,31 @@ class Places:
     first_tie: Ints
     """Where the ties of each place begin, and their number at the end (P + 1)."""
 
-    def ties_of(self, first: int, last: int) -> list[int]:
-        """The ties of some places that follow each other, the last included."""
-        found: list[int] = self.ties[self.first_tie[first] : self.first_tie[last + 1]].tolist()
+    def ties_of(self, place: int) -> list[int]:
+        """The ties of a place."""
+        found: list[int] = self.ties[self.first_tie[place] : self.first_tie[place + 1]].tolist()
         return found
 
-    def ties_among(self, held: Ints) -> list[int]:
-        """The ties of places in order."""
-        first, last = int(held[0]), int(held[-1])
-        if last - first == len(held) - 1:
-            return self.ties_of(first, last)
-        return [tie for place in held.tolist() for tie in self.ties_of(place, place)]
+    def take(self, kept: Ints) -> Places:
+        """Some of the places, in order."""
+        if len(kept) == len(self.x):
+            return self
+        counts = np.diff(self.first_tie)[kept]
+        place, within = spread(counts)
+        return Places(
+            beam=self.beam[kept],
+            x=self.x[kept],
+            legs=self.legs[kept],
+            area=self.area[kept],
+            diameter=self.diameter[kept],
+            closed=self.closed[kept],
+            grade=self.grade[kept],
+            bottom=self.bottom[kept],
+            top=self.top[kept],
+            half_width=self.half_width[kept],
+            ties=self.ties[self.first_tie[kept][place] + within],
+            first_tie=offsets(counts),
+        )
 
     def steel(self) -> Ints:
         """A number for each place, the same where legs, area, steel and form are the same."""
@@ -167,6 +182,10 @@ class Zone:
     first: int
     """The places that bound its gaps, the last included."""
     last: int
+
+    def shifted(self, places: int) -> Zone:
+        """The same zone where other places stand before."""
+        return replace(self, first=self.first + places, last=self.last + places)
 
 
 def gather_places(

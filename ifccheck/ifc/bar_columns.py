@@ -1,0 +1,142 @@
+"""Bars of a model column by column, and the readers that all ways of gathering them share."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import dataclass, field
+
+import numpy as np
+
+from ifccheck.ifc.bar_data import BarData, Data
+from ifccheck.ifc.bar_paths import Floats, Ints
+from ifccheck.ifc.bar_samples import PathTable, tabulate
+from ifccheck.ifc.bar_shapes import BarShapes, Strand
+from ifccheck.ifc.context import Context
+from ifccheck.ifc.entity import Entity, UnreadableError
+from ifccheck.ifc.placements import IDENTITY, Matrix
+
+NO_MOVE = (0.0, 0.0, 0.0)
+
+
+@dataclass(frozen=True, slots=True)
+class BarColumns:
+    """Bars (B) and their strands (S)."""
+
+    product: Ints
+    """Which of the products asked for each bar is."""
+    names: Sequence[str]
+    data: Sequence[Data]
+    outer: Ints
+    """Outer matrix of each bar."""
+    move: Floats
+    """Place of each bar in its outer matrix, in units of the model (B, 3)."""
+    bar: Ints
+    """Bar of each strand; those of one bar follow those of the bar before."""
+    path: Ints
+    inner: Ints
+
+
+@dataclass(frozen=True, slots=True)
+class Gathered:
+    """Bars that were read, and what is wrong with others."""
+
+    columns: BarColumns
+    unreadable: dict[int, str] = field(default_factory=dict)
+    """By the place of the product."""
+
+
+class Matrices:
+    """Distinct matrices, numbered."""
+
+    def __init__(self) -> None:
+        self.all: list[Matrix] = []
+        self._index: dict[int, int] = {}
+
+    def index(self, matrix: Matrix) -> int:
+        """Number of a matrix; the matrix is kept, so its identity stays its own."""
+        found = self._index.get(id(matrix))
+        if found is None:
+            found = self._index[id(matrix)] = len(self.all)
+            self.all.append(matrix)
+        return found
+
+
+class BarReaders:
+    """What reads the shapes, the data and the places of bars."""
+
+    def __init__(self, context: Context) -> None:
+        self.context = context
+        self.shapes = BarShapes(context.units, context.placements)
+        self.data = BarData(context)
+        self.outer, self.inner = Matrices(), Matrices()
+        self.swept_paths = tabulate(())
+        """Centre lines that were read from the file's text."""
+        self._parents: dict[int, int] = {0: self.outer.index(IDENTITY)}
+
+    def parent(self, step_id: int) -> int:
+        """The outer matrix of a placement, by its STEP id; 0 is the building itself.
+
+        Raises UnreadableError.
+        """
+        if step_id not in self._parents:
+            placement = self.context.file.by_id(step_id)
+            matrix = self.context.placements.placement(placement)
+            self._parents[step_id] = self.outer.index(matrix)
+        return self._parents[step_id]
+
+    def path(self, strand: Strand) -> int:
+        """Number of the centre line of a strand in ``paths()``."""
+        return len(self.swept_paths) + strand.path
+
+    def paths(self) -> PathTable:
+        """All centre lines that were read."""
+        return self.swept_paths.with_more(tabulate(self.shapes.paths))
+
+    def settled(self, product: Entity, name: str, swept: float | None) -> Data:
+        """Return what is settled of a bar; raises UnreadableError."""
+        data = self.data.of(product, product.id(), name, swept)
+        if data.size < 0:
+            raise UnreadableError("is of a diameter that nobody states")
+        return data
+
+
+def thinnest(strands: Sequence[Strand]) -> float | None:
+    """The least diameter of the strands of a bar; None where none has one."""
+    if not strands:
+        raise UnreadableError("has no shape")
+    return min((s.diameter for s in strands if s.diameter is not None), default=None)
+
+
+def name_of(product: Entity) -> str:
+    """The name of a bar, or else its tag."""
+    name: str = product.get_argument(2) or product.get_argument(7) or ""
+    return name
+
+
+def what_is_wrong(error: Exception) -> str:
+    """Say what keeps a bar from being read."""
+    if isinstance(error, UnreadableError):
+        return str(error)
+    return f"holds what its class does not allow ({error})"
+
+
+def concatenated(first: BarColumns, second: BarColumns) -> BarColumns:
+    """The bars of both, in the order of the products."""
+    count = len(first.product)
+    product = np.concatenate((first.product, second.product))
+    order = np.argsort(product, kind="stable")
+    rank = np.empty(len(order), dtype=np.intp)
+    rank[order] = np.arange(len(order))
+    names, data = [*first.names, *second.names], [*first.data, *second.data]
+    bar = rank[np.concatenate((first.bar, second.bar + count))]
+    strand = np.argsort(bar, kind="stable")
+    return BarColumns(
+        product=product[order],
+        names=[names[at] for at in order.tolist()],
+        data=[data[at] for at in order.tolist()],
+        outer=np.concatenate((first.outer, second.outer))[order],
+        move=np.concatenate((first.move, second.move))[order],
+        bar=bar[strand],
+        path=np.concatenate((first.path, second.path))[strand],
+        inner=np.concatenate((first.inner, second.inner))[strand],
+    )

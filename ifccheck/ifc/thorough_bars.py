@@ -1,0 +1,94 @@
+"""Bars read one by one through the entities of the model."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable, Sequence
+
+import numpy as np
+
+from ifccheck.ifc.bar_columns import (
+    NO_MOVE,
+    BarColumns,
+    BarReaders,
+    Gathered,
+    name_of,
+    thinnest,
+    what_is_wrong,
+)
+from ifccheck.ifc.bar_data import Data
+from ifccheck.ifc.entity import ILL_TYPED, Entity, UnreadableError
+
+
+def read_thoroughly(readers: BarReaders, products: Iterable[tuple[int, Entity]]) -> Gathered:
+    """Read products one by one, each given with its place."""
+    found = _Bars(readers)
+    unreadable: dict[int, str] = {}
+    for place, product in products:
+        try:
+            found.add(place, product)
+        except (UnreadableError, *ILL_TYPED) as error:
+            unreadable[place] = what_is_wrong(error)
+    return Gathered(found.columns(), unreadable)
+
+
+class _Bars:
+    def __init__(self, readers: BarReaders) -> None:
+        self._readers = readers
+        self._bars: list[tuple[int, int]] = []
+        """Place and outer matrix of each bar."""
+        self._names: list[str] = []
+        self._data: list[Data] = []
+        self._moves: list[Sequence[float]] = []
+        self._strands: list[tuple[int, int, int]] = []
+        """Bar, path and inner matrix of each strand."""
+
+    def add(self, place: int, product: Entity) -> None:
+        """Add one product; raises UnreadableError."""
+        readers = self._readers
+        strands = readers.shapes.of(product.get_argument(6))
+        outer, move = _placement(readers, product.get_argument(5))
+        name = name_of(product)
+        data = readers.settled(product, name, thinnest(strands))
+        bar = len(self._bars)
+        self._bars.append((place, outer))
+        self._names.append(name)
+        self._data.append(data)
+        self._moves.append(move)
+        for strand in strands:
+            inner = readers.inner.index(strand.matrix)
+            self._strands.append((bar, readers.path(strand), inner))
+
+    def columns(self) -> BarColumns:
+        """All bars that were added."""
+        product, outer = np.array(self._bars, dtype=np.intp).reshape(-1, 2).T
+        bar, path, inner = np.array(self._strands, dtype=np.intp).reshape(-1, 3).T
+        move = np.array(self._moves, dtype=float).reshape(-1, 3)
+        return BarColumns(product, self._names, self._data, outer, move, bar, path, inner)
+
+
+def _placement(readers: BarReaders, placement: Entity | None) -> tuple[int, Sequence[float]]:
+    """An outer matrix, and where a bar stands in it; most bars are only moved, not turned."""
+    if placement is None:
+        return readers.parent(0), NO_MOVE
+    move = _only_moved(placement)
+    if move is None:
+        return readers.parent(placement.id()), NO_MOVE
+    parent = placement.get_argument(0)
+    return readers.parent(0 if parent is None else parent.id()), move
+
+
+def _only_moved(placement: Entity) -> Sequence[float] | None:
+    """The move of a local placement that does not turn; None for any other placement."""
+    if placement.is_a() != "IfcLocalPlacement":
+        return None
+    axes = placement.get_argument(1)
+    if axes.is_a() != "IfcAxis2Placement3D":
+        return None
+    argument = axes.get_argument
+    if argument(1) is not None or argument(2) is not None:
+        return None
+    location = argument(0)
+    if location.is_a() != "IfcCartesianPoint":
+        return None
+    moved: Sequence[float] = location.get_argument(0)
+    return moved if len(moved) == 3 else None
