@@ -14,14 +14,9 @@ import numpy as np
 import pytest
 
 from ifccheck.beam import Anchor
-from ifccheck.ifc.bar_chains import follow_chains
-from ifccheck.ifc.bar_paths import Path, path_length, rounded, sample
-from ifccheck.ifc.context import make_context
+from ifccheck.ifc.bar_paths import Path, path_length, rounded
+from ifccheck.ifc.bar_samples import sample, tabulate
 from ifccheck.ifc.entity import UnreadableError
-from ifccheck.ifc.lexer import scan
-from ifccheck.ifc.reinforcement import read_reinforcement
-from ifccheck.ifc.step_table import make_step_table
-from ifccheck.ifc.swept_texts import read_swept_texts
 from tests.barred_beams import HEIGHT, LENGTH, Curve, ModelWithBars, bent, straight
 
 # CSA G30.18: nominal diameter [mm] and area [mm2], published
@@ -509,7 +504,7 @@ def test_shape_decides_over_role() -> None:
 
 def test_arcs_are_sampled_on_their_circle() -> None:
     half_circle = Path(((50.0, 0.0, 0.0), (0.0, 50.0, 0.0), (-50.0, 0.0, 0.0)), (0,))
-    points = sample((half_circle,)).points
+    points = sample(tabulate((half_circle,))).points
     assert np.hypot(points[:, 0], points[:, 1]) == pytest.approx(50.0)
     assert path_length(half_circle) == pytest.approx(50.0 * math.pi)
     turned = np.degrees(np.unwrap(np.arctan2(points[:, 1], points[:, 0])))
@@ -522,69 +517,3 @@ def test_heights_are_measured_from_the_soffit() -> None:
     beam = model.beam(origin=(0.0, 0.0, 9000.0))
     model.bars(beam, straight(50, 5950, 0, HEIGHT - 60.0))
     assert model.read(beam).bars[0].z == pytest.approx(540.0)
-
-
-@pytest.mark.parametrize("unit", ["mm", "m", "in"])
-def test_following_many_statements_at_once_reads_the_same(unit: str) -> None:
-    """The plainest bars are followed through the file's text, all others through ifcopenshell."""
-    model = ModelWithBars(unit=unit)
-    beams = [model.beam(origin=(1000.0, y, 3000.0), along=(1.0, 0.5, 0.1)) for y in (0.0, 2000.0)]
-    for beam in beams:
-        model.bars(beam, straight(50, 5950, -90, 60), square_hook(20.0, 250.0), diameter=20.0)
-        solid = model.swept(straight(0, 2000, 0, 0), 16.0)
-        items = model.mapped(solid, [(50.0, 0.0, 540.0), (3000.0, 0.0, 540.0)])
-        model.aggregate(beam, [model.bar([item], 16.0, beam, Name="it's #7") for item in items])
-        model.aggregate(beam, [model.bar(items, 16.0, beam)])
-    moved, turned = model.file.by_type("IfcReinforcingBar")[:2]
-    axes = moved.ObjectPlacement.RelativePlacement
-    axes.Location.Coordinates = (1.5e-3, 0.0, -1.25)
-    turned.ObjectPlacement.RelativePlacement = model.file.create_entity(
-        "IfcAxis2Placement3D",
-        model.point((0.0, 0.0, 0.0)),
-        model.direction((0, 0, 1)),
-        model.direction((1, 1e-3, 0)),
-    )
-    data = model.file.to_string().encode()
-    statements = make_step_table(data, scan(data))
-    assert statements is not None
-    context = make_context(model.file, "IFC4")
-    products = model.file.by_type("IfcReinforcingBar")
-    chains = list(follow_chains(statements, [product.id() for product in products]))
-    assert chains[1] is None
-    assert sum(chain is not None for chain in chains) > 4
-    solids = np.array([solid.id() for solid in model.file.by_type("IfcSweptDiskSolid")])
-    read = {item: path for item, path, _ in read_swept_texts(statements, solids, 1.0)}
-    assert len(read) == len(solids)
-    assert {len(path.arcs) for path in read.values()} == {0, 1}
-    assert read_reinforcement(context, model.frames, {}, statements) == read_reinforcement(
-        context, model.frames, {}
-    )
-
-
-def test_text_that_hides_what_it_is_is_not_followed() -> None:
-    data = ModelWithBars().file.to_string().encode().replace(b"DATA;", b"DATA; /* #1=IFCX( */")
-    assert make_step_table(data, scan(data)) is None
-
-
-@pytest.mark.parametrize(
-    "curve",
-    [
-        "IFCINDEXEDPOLYCURVE(#8,(IFCLINEINDEX((1,2)),IFCLINEINDEX((3,2))),.F.)",  # does not meet
-        "IFCINDEXEDPOLYCURVE(#8,(IFCLINEINDEX((1,4))),.F.)",  # has no fourth point
-        "IFCINDEXEDPOLYCURVE(#8,(IFCARCINDEX((1,2))),.F.)",  # is no arc
-        "IFCPOLYLINE((#8,#8))",
-    ],
-)
-def test_curves_that_are_not_plain_are_left_to_the_thorough_reader(curve: str) -> None:
-    text = (
-        "ISO-10303-21;HEADER;FILE_SCHEMA(('IFC4'));ENDSEC;DATA;"
-        "#5=IFCSWEPTDISKSOLID(#7,8.,$,$,$);#6=IFCSWEPTDISKSOLID(#9,8.,$,$,$);"
-        f"#7={curve};#9=IFCINDEXEDPOLYCURVE(#8,$,.F.);"
-        "#8=IFCCARTESIANPOINTLIST3D(((0.,0.,0.),(1.E3,0.,0.),(2000.,0.,-.5)));"
-        "ENDSEC;END-ISO-10303-21;"
-    ).encode()
-    statements = make_step_table(text, scan(text))
-    assert statements is not None
-    ((item, path, diameter),) = read_swept_texts(statements, np.array([5, 6]), 2.0)
-    assert (item, diameter) == (6, 32.0)
-    assert path.points == ((0.0, 0.0, 0.0), (2000.0, 0.0, 0.0), (4000.0, 0.0, -1.0))
