@@ -235,6 +235,9 @@ class Beam:
     """At most one entry per source, as found in the model (or added from the schedule)."""
     reasons: tuple[Reason, ...] = ()
     remarks: tuple[Remark, ...] = ()
+    strength_reason: Reason | None = None
+    """Why the strength that the model states cannot be read; it counts unless the brief states
+    the strength of this beam."""
 
     @property
     def mark(self) -> str:

@@ -174,7 +174,9 @@ def missing_of(model: Model) -> dict[str, tuple[str, ...]]:
 
 def _missing(beam: Beam) -> Iterable[str]:
     yield from (reason.text for reason in beam.reasons)
-    if beam.concrete_strength is None:
+    if beam.strength_reason is not None:
+        yield beam.strength_reason.text
+    elif beam.concrete_strength is None:
         yield "concrete strength"
     if not beam.reinforcement:
         yield "reinforcement"

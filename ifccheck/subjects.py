@@ -223,15 +223,7 @@ def _first(*given: Given | None) -> Given | None:
 def _concrete(beam: Beam, sources: _Sources, findings: _Findings) -> _Concrete:
     stated = sources.materials.get(beam.key, MaterialStatement())
     findings.remarks += stated.remarks
-    strength = _first(
-        stated.concrete_strength, beam.concrete_strength, sources.defaults.concrete_strength
-    )
-    if strength is None:
-        findings.refuse(
-            "concrete strength unknown: neither the model nor the brief gives one (write"
-            " defaults.concrete_strength or an entry of [[materials]])"
-        )
-        strength = Given(math.nan, "not known")
+    strength = _strength(beam, stated, sources, findings)
     density = _first(stated.density, beam.concrete_density)
     factor = sources.standard.density_factor(density.value if density else None)
     return _Concrete(
@@ -241,6 +233,28 @@ def _concrete(beam: Beam, sources: _Sources, findings: _Findings) -> _Concrete:
         ),
         aggregate_size=_aggregate(stated, sources, findings),
     )
+
+
+def _strength(
+    beam: Beam, stated: MaterialStatement, sources: _Sources, findings: _Findings
+) -> Given:
+    """The brief's statement, the model's, the brief's default; nan where there is none.
+
+    A strength that the model states and that cannot be read is no silence: no default fills it.
+    """
+    if stated.concrete_strength is None and beam.strength_reason is not None:
+        findings.reasons.append(beam.strength_reason)
+        return Given(math.nan, "not read")
+    given = _first(
+        stated.concrete_strength, beam.concrete_strength, sources.defaults.concrete_strength
+    )
+    if given is None:
+        findings.refuse(
+            "concrete strength unknown: neither the model nor the brief gives one (write"
+            " defaults.concrete_strength or an entry of [[materials]])"
+        )
+        return Given(math.nan, "not known")
+    return given
 
 
 def _aggregate(stated: MaterialStatement, sources: _Sources, findings: _Findings) -> Given:

@@ -10,7 +10,7 @@ import pytest
 
 from ifccheck.beam import Beam, Model
 from ifccheck.ifc.reader import read_model
-from ifccheck.ifc.strength import read_strength_text
+from ifccheck.ifc.strength_texts import Reading, Unread, read_strength_text
 from ifccheck.ifc.vocabulary import families_named, families_of_material
 from tests.ifc_models import Building, Opened, only_beam, only_left_out, reasons
 
@@ -377,11 +377,37 @@ def test_tendon_without_a_place_is_a_doubt_of_the_model() -> None:
         ("Concrete C35 in situ", 28.0, 35.0),
         ("fcu = 40", 32.0, 32.0),
         ("Rck 37", 29.6, 29.6),
+        ("RC25/30", 25.0, 25.0),
+        ("Concrete RC25/30", 25.0, 25.0),
+        ("BetonC25/30", 25.0, 25.0),
+        ("RC40", 32.0, 40.0),
+        ("25 N", 20.0, 25.0),
+        ("Concrete 25N", 20.0, 25.0),
+        ("Grade 25", 20.0, 25.0),
+        ("Concrete f'c=4,000 psi", 27.579, 27.579),
+        ("Concrete 4,000 psi", 27.579, 27.579),
+        ("rebar 400MPa concrete 25MPa", 25.0, 25.0),
+        ("concrete 25MPa rebar 400MPa", 25.0, 25.0),
+        ("f'c 56d = 35 MPa", 35.0, 35.0),
+        ("f'c 28 days 25 MPa", 25.0, 25.0),
+        ("f'c 28-day = 25 MPa", 25.0, 25.0),
+        ("f'c(28) = 25 MPa", 25.0, 25.0),
+        ("f'c28 = 25 MPa", 25.0, 25.0),
+        ("f'c 7d 20 MPa, f'c 28d 30 MPa", 20.0, 20.0),
+        ("Concrete 25-30 MPa", 25.0, 25.0),
+        ("Concrete 25 to 30 MPa", 25.0, 25.0),
+        ("Concrete 30 MPa / 25 MPa", 25.0, 25.0),
+        ("Concrete 250 kgf/cm2", 24.517, 24.517),
+        ("Concrete 280 kg/cm2", 27.459, 27.459),
+        ("fcu = 40 MPa", 32.0, 32.0),
+        ("Concrete 4000 psi, Gr 60 bars", 27.579, 27.579),
+        ("C30/37 (30 MPa)", 30.0, 30.0),
+        ("C35 (35 MPa)", 35.0, 35.0),
     ],
 )
 def test_strength_in_a_name(text: str, low: float, high: float) -> None:
     reading = read_strength_text(text, "here")
-    assert reading is not None
+    assert isinstance(reading, Reading)
     assert (reading.low, reading.high) == pytest.approx((low, high), rel=1e-4)
 
 
@@ -399,10 +425,86 @@ def test_strength_in_a_name(text: str, low: float, high: float) -> None:
         "Beton C",
         "R 300/500",
         "40/80",
+        "Concrete 300 wide",
+        "Concrete 300x600",
+        "Concrete 01",
+        "Concrete density 2400 kg/m3",
+        "Rebar 400 MPa",
+        "Reinforced concrete",
+        "Concrete exposure class 25",
     ],
 )
 def test_names_without_a_strength(text: str) -> None:
     assert read_strength_text(text, "here") is None
+
+
+@pytest.mark.parametrize(
+    "text",
+    [
+        "Concrete 4,5 ksi",
+        "Concrete 27,5 MPa",
+        "f'c = 27,5",
+        "Concrete f'c as drawn",
+        "Concrete30MPa",
+        "Concrete 4 000 psi",
+        "Concrete 4 MPa",
+        "f'c = 4",
+        "Concrete M300",
+        "Concrete N32",
+        "Concrete H-25",
+        "Concrete 3000#",
+        "Concrete strength class 102",
+        "Concrete 30",
+        "Concrete - 4000",
+        "Concrete with Grade 60 rebar",
+        "Concrete, 400 MPa",
+    ],
+)
+def test_strengths_that_cannot_be_read(text: str) -> None:
+    assert isinstance(read_strength_text(text, "here"), Unread)
+
+
+@pytest.mark.parametrize("text", ["S4", "X", "Type 3", "H-25", "400 MPa", "B500B", "25,5"])
+def test_a_strength_class_that_is_not_understood(text: str) -> None:
+    beam = with_strengths(strength_class=text)
+    assert beam.concrete_strength is None
+    assert beam.strength_reason is not None
+    assert beam.strength_reason.blocking
+    assert f'Pset_ConcreteElementGeneral.StrengthClass "{text}"' in beam.strength_reason.text
+    both = with_strengths(strength_class=text, material="Concrete C50/60")
+    assert both.concrete_strength is None or text == "400 MPa"
+
+
+@pytest.mark.parametrize("text", ["-", "NOTDEFINED", "n/a", "<None>"])
+def test_a_strength_class_that_nobody_set(text: str) -> None:
+    beam = with_strengths(strength_class=text)
+    assert beam.concrete_strength is None
+    assert beam.strength_reason is None
+
+
+@pytest.mark.parametrize(
+    ("pressure", "material", "readable"),
+    [
+        (30.0, "Concrete C30/37", True),  # 30 MPa without its unit
+        (25.0, "Concrete C30/37", False),  # perhaps 25 MPa
+        (25.0e9, "Concrete C30/37", False),
+        (400.0e6, "Concrete C30/37", True),  # the steel's
+        (4.0e6, "Concrete C30/37", False),  # perhaps 4 ksi, 27.6 MPa
+        (0.0, "Concrete C30/37", True),
+    ],
+)
+def test_a_pressure_that_no_concrete_has(pressure: float, material: str, readable: bool) -> None:
+    beam = with_strengths(pressure=pressure, material=material)
+    assert (beam.concrete_strength is not None) is readable
+    assert (beam.strength_reason is None) is readable
+    assert "is no concrete strength" in beam.remarks[0].text
+
+
+def test_several_strengths_in_one_text_are_told() -> None:
+    beam = with_strengths(material="Concrete 25-30 MPa")
+    assert beam.concrete_strength is not None
+    assert beam.concrete_strength.value == 25.0
+    assert "several strengths (25, 30 MPa)" in beam.remarks[0].text
 
 
 def with_strengths(
@@ -463,6 +565,7 @@ def test_strength_in_wrong_units_is_not_used() -> None:
     """30 MPa written as 30 Pa."""
     beam = with_strengths(pressure=30.0)
     assert beam.concrete_strength is None
+    assert beam.strength_reason is not None
     assert "is no concrete strength" in beam.remarks[0].text
 
 

@@ -362,6 +362,21 @@ def test_unknown_material(tmp_path: Path, material: str) -> None:
     check_adequate(rated(tmp_path, hall(Beam(material="Concrete")), text=known))
 
 
+@pytest.mark.parametrize(
+    "material",
+    ["Concrete 4,5 ksi", "Concrete M300", "Concrete with Grade 60 rebar", "Concrete 4 MPa"],
+)
+def test_a_default_does_not_replace_a_strength_that_cannot_be_read(
+    tmp_path: Path, material: str
+) -> None:
+    default = brief(defaults=DEFAULTS + 'concrete_strength = "50 MPa"\n')
+    told = hall(Beam(material=material))
+    check_not_rated(rated(tmp_path, told, text=default), "concrete strength cannot be read from")
+    check_adequate(rated(tmp_path, hall(Beam(material="Concrete")), text=default))
+    word = default + stated("materials", 'concrete_strength = "31 MPa"')
+    check_adequate(rated(tmp_path, told, text=word))
+
+
 @pytest.mark.parametrize("material", ["Structural steel S355", "Timber GL24h"])
 def test_out_of_scope_on_positive_evidence_alone(tmp_path: Path, material: str) -> None:
     other = Beam("B-2", at=(0.0, 9000.0, 3000.0), material=material, notation=None)

@@ -212,8 +212,8 @@ class BeamReader:
         step_id = entity.id()
         readings = self._strengths.of(clues.definition, sets)
         readings += strengths_told(clues.properties)
-        strength, remarks = concrete_strength(readings, identity.key)
-        doubts.remarks += remarks
+        strength = concrete_strength(readings, identity.key)
+        doubts.remarks += strength.remarks
         density = self._density(clues, doubts)
         return Beam(
             key=identity.key,
@@ -229,7 +229,8 @@ class BeamReader:
             axis=straight.axis if straight is not None else None,
             runs=_runs(straight),
             material=clues.definition.title,
-            concrete_strength=strength,
+            concrete_strength=strength.given,
+            strength_reason=strength.reason,
             concrete_density=density,
             cover=_cover(sets, doubts),
             reasons=tuple(doubts.reasons),

@@ -1,137 +1,95 @@
-"""Concrete strength from property values and from the names that people give concretes.
+"""Concrete strength of a beam from what its property sets and materials say.
 
-The strength read is the specified cylinder strength [MPa]. A name that can mean a cylinder or
-a cube is read both ways and the lower counts.
+What speaks of a strength and cannot be read leaves the beam without one: a default is for
+models that are silent.
 """
 
 from __future__ import annotations
 
-import re
+import math
 from collections.abc import Iterable, Iterator, Sequence
 from dataclasses import dataclass
-from functools import lru_cache
 from typing import TYPE_CHECKING
 
-from ifccheck.beam import Given, Remark
+from ifccheck.beam import Given, Reason, Remark
 from ifccheck.ifc.materials import Material, MaterialDefinition
 from ifccheck.ifc.properties import PropertyValue, Sets
+from ifccheck.ifc.strength_texts import (
+    Reading,
+    Unread,
+    is_credible,
+    is_only_steel,
+    lowest_of,
+    read_strength_text,
+)
 
 if TYPE_CHECKING:
     from ifccheck.ifc.context import Context
 
-CUBE_TO_CYLINDER = 0.8
-"""Cylinder strength over cube strength of normal concrete, the usual lower value."""
-MPA_PER_PSI = 6.894757293168361e-3
-LEAST, MOST = 5.0, 150.0
-"""Strengths outside these are misread units [MPa]."""
-AGREE = 0.01
-"""Relative difference below which two sources agree."""
 STAGE = "materials"
 
-TWO_STRENGTHS = re.compile(
-    r"(?<![a-z0-9.])(?:u?hpc|l?c)?[ _]?(\d{2,3}) ?/ ?(\d{2,3})(?![\d.])", re.I
-)
-CYLINDER = re.compile(
-    r"(?<![a-z])f['’`]?c['’`]?k?\s*[=:]?\s*(\d+(?:\.\d+)?)\s*(ksi|psi|mpa|n/mm)?", re.I
-)
-CUBE = re.compile(r"(?<![a-z])(?:fcu|rck|fck,? ?cube)\s*[=:]?\s*(\d+(?:\.\d+)?)", re.I)
-WITH_UNIT = re.compile(r"(?<![\w.])(\d+(?:\.\d+)?)[\s-]*(ksi|psi|mpa|n/mm)", re.I)
-SPANISH = re.compile(r"(?<![a-z])h[aplm]-? ?(\d{2,3})(?!\d)", re.I)
-AMBIGUOUS = re.compile(r"(?<![a-z])([bckm]) ?-?(\d{2})(?![\d/.]|\s*[x×])", re.I)
-BARE = re.compile(r"\s*(\d{2,3}(?:\.\d+)?)\s*$")
+Said = Reading | Unread
+"""What one source says of a strength."""
 
 
 @dataclass(frozen=True, slots=True)
-class Reading:
-    """A strength that one source gives: the lowest and the highest that it can mean [MPa]."""
+class Strength:
+    """The strength that the sources of one beam support, or why it cannot be told."""
 
-    low: float
-    high: float
-    source: str
-
-    @property
-    def doubtful(self) -> bool:
-        """Tell whether it can be read two ways."""
-        return self.high > self.low * (1.0 + AGREE)
-
-    @property
-    def credible(self) -> bool:
-        """Tell whether it is a strength that concrete has."""
-        return self.low >= LEAST and self.high <= MOST
-
-    def admits(self, value: float) -> bool:
-        """Tell whether it can mean a value."""
-        return self.low * (1.0 - AGREE) <= value <= self.high * (1.0 + AGREE)
+    given: Given | None
+    reason: Reason | None
+    remarks: tuple[Remark, ...]
 
 
-@lru_cache(maxsize=4096)
-def read_strength_text(text: str, source: str, bare: bool = False) -> Reading | None:
-    """Return the cylinder strength that a text names, None where it names none.
-
-    ``bare``: the text is a strength class, so that a number alone counts too.
-    """
-    low, high = _range(text, bare)
-    return Reading(low, high, source) if high > 0.0 else None
-
-
-def _range(text: str, bare: bool) -> tuple[float, float]:
-    """Lowest and highest strength that a text can mean; (0, 0) where it means none."""
-    if found := CUBE.search(text):
-        return (CUBE_TO_CYLINDER * float(found[1]),) * 2
-    if found := CYLINDER.search(text):
-        return (_in_mpa(float(found[1]), found[2]),) * 2
-    if (found := TWO_STRENGTHS.search(text)) and _is_class(float(found[1]), float(found[2])):
-        return (float(found[1]),) * 2
-    if found := WITH_UNIT.search(text):
-        return (_in_mpa(float(found[1]), found[2]),) * 2
-    if found := SPANISH.search(text):
-        return (float(found[1]),) * 2
-    if found := AMBIGUOUS.search(text):
-        return CUBE_TO_CYLINDER * float(found[2]), float(found[2])
-    if bare and (found := BARE.match(text)):
-        return CUBE_TO_CYLINDER * float(found[1]), float(found[1])
-    return 0.0, 0.0
-
-
-def _is_class(cylinder: float, cube: float) -> bool:
-    """Tell whether two numbers are a strength class and not, say, two sides of a section."""
-    return cylinder <= MOST and 1.05 <= cube / cylinder <= 1.4
-
-
-def _in_mpa(value: float, unit: str | None) -> float:
-    folded = (unit or "").lower()
-    if folded == "ksi":
-        return value * 1000.0 * MPA_PER_PSI
-    if folded == "psi" or (not folded and value >= 1000.0):
-        return value * MPA_PER_PSI
-    return value
-
-
-def concrete_strength(readings: Sequence[Reading], beam: str) -> tuple[Given | None, list[Remark]]:
+def concrete_strength(readings: Sequence[Said], beam: str) -> Strength:
     """Return the strength that the sources of one beam support, and what is doubtful of it."""
-    remarks = [
-        Remark(beam, STAGE, f"{one.low:.4g} MPa from {one.source} is no concrete strength", "doubt")
-        for one in readings
-        if not one.credible
-    ]
-    credible = [reading for reading in readings if reading.credible]
-    if not credible:
-        return None, remarks
-    certain = [reading for reading in credible if not reading.doubtful]
-    chosen = min(certain or credible, key=_low)
-    others = [reading for reading in credible if not reading.admits(chosen.low)]
-    lowest = min([chosen, *others], key=_low)
+    read = [each for each in readings if isinstance(each, Reading)]
+    unread = [each for each in readings if isinstance(each, Unread)]
+    texts = [f"{one.value:.4g} MPa from {one.source} is no concrete strength"
+             for one in unread if not math.isnan(one.value)]  # fmt: skip
+    ranges = [(one.low, one.high) for one in read]
+    low = lowest_of(ranges)[0] if read else 0.0
+    blocking = [one for one in unread if not (read and one.at_least(low)) and one.value != 0.0]
+    reason = Reason(_cannot_be_read(blocking[0])) if blocking else None
+    texts += [_several(one) for one in read if one.others]
+    given = None
+    if read:
+        lowest = next(one for one in read if (one.low, one.high) == lowest_of(ranges))
+        texts += _doubts_of(read, lowest)
+        given = Given(round(lowest.low, 6), lowest.source)
+    return Strength(
+        given if reason is None else None,
+        reason,
+        tuple(Remark(beam, STAGE, text, "doubt") for text in texts),
+    )
+
+
+def _cannot_be_read(one: Unread) -> str:
+    told = "" if math.isnan(one.value) else f" ({one.value:.4g} MPa is no concrete strength)"
+    return (
+        f"concrete strength cannot be read from {one.source}{told}: correct it, or state"
+        " concrete_strength in an entry of [[materials]]"
+    )
+
+
+def _several(one: Reading) -> str:
+    listed = ", ".join(f"{value:.4g}" for value in (one.low, *one.others))
+    return f"{one.source} gives several strengths ({listed} MPa): {one.low:.4g} MPa is used"
+
+
+def _doubts_of(read: Sequence[Reading], lowest: Reading) -> Iterator[str]:
+    """What is doubtful of the lowest strength among others."""
+    certain = [one for one in read if not one.doubtful]
+    chosen = min(certain or read, key=_low)
+    others = [one for one in read if not one.admits(chosen.low)]
     if others:
         listed = "; ".join(f"{one.low:.4g} MPa from {one.source}" for one in [chosen, *others])
-        text = f"concrete strength differs between sources ({listed}): the lowest is used"
-        remarks.append(Remark(beam, STAGE, text, "doubt"))
+        yield f"concrete strength differs between sources ({listed}): the lowest is used"
     if lowest.doubtful:
-        text = (
+        yield (
             f"{lowest.source} can mean a cube or a cylinder strength: "
             f"taken as cube, {lowest.low:.4g} MPa on cylinders"
         )
-        remarks.append(Remark(beam, STAGE, text, "doubt"))
-    return Given(round(lowest.low, 6), lowest.source), remarks
 
 
 def _low(reading: Reading) -> float:
@@ -143,68 +101,75 @@ class Strengths:
 
     def __init__(self, context: Context) -> None:
         self._context = context
-        self._by_material: dict[int, tuple[Reading, ...]] = {}
+        self._by_material: dict[int, tuple[Said, ...]] = {}
 
-    def of(self, definition: MaterialDefinition, sets: Sets) -> list[Reading]:
+    def of(self, definition: MaterialDefinition, sets: Sets) -> list[Said]:
         """Return what a beam's property sets and materials say of its strength."""
         readings = list(_from_sets(sets))
         for material in definition.materials:
             readings += self._of_material(material)
         for name in definition.set_names:
-            reading = read_strength_text(name, f'material set name "{name}"')
-            readings += [reading] if reading is not None else []
+            readings += _from_text(name, f'material set name "{name}"')
         return readings
 
-    def _of_material(self, material: Material) -> tuple[Reading, ...]:
+    def _of_material(self, material: Material) -> tuple[Said, ...]:
         if material.step_id not in self._by_material:
             self._by_material[material.step_id] = tuple(self._read(material))
         return self._by_material[material.step_id]
 
-    def _read(self, material: Material) -> Iterator[Reading]:
+    def _read(self, material: Material) -> Iterator[Said]:
+        if is_only_steel(material.name):
+            return
         sets = self._context.properties.of_material(material.step_id)
         for name, values in sets.items():
-            value = values.get("CompressiveStrength")
-            if value is not None:
-                yield from _from_value(value, f'{name}.CompressiveStrength of "{material.name}"')
-            yield from _from_class(values.get("StrengthClass"), f"{name}.StrengthClass")
+            of_material = f'of "{material.name}"'
+            yield from _from_value(
+                values.get("CompressiveStrength"), f"{name}.CompressiveStrength {of_material}"
+            )
+            yield from _from_value(
+                values.get("StrengthClass"), f"{name}.StrengthClass {of_material}"
+            )
         for text in dict.fromkeys((material.name, material.category, material.description)):
-            reading = read_strength_text(text, f'material name "{text}"')
-            if reading is not None:
-                yield reading
+            yield from _from_text(text, f'material name "{text}"')
 
 
-def strengths_told(properties: Iterable[tuple[str, str]]) -> Iterator[Reading]:
+def strengths_told(properties: Iterable[tuple[str, str]]) -> Iterator[Said]:
     """Yield the strengths that texts of properties name, each given with its property."""
     for source, text in properties:
-        reading = read_strength_text(text, f'{source} "{text}"')
-        if reading is not None:
-            yield reading
+        yield from _from_text(text, f'{source} "{text}"')
 
 
-def _from_sets(sets: Sets) -> Iterator[Reading]:
-    general = sets.get("Pset_ConcreteElementGeneral", {})
-    yield from _from_class(
-        general.get("StrengthClass"), "Pset_ConcreteElementGeneral.StrengthClass"
-    )
-    for name in ("Pset_ConcreteElementGeneral", "Pset_MaterialConcrete"):
-        value = sets.get(name, {}).get("CompressiveStrength")
-        if value is not None:
-            yield from _from_value(value, f"{name}.CompressiveStrength")
-
-
-def _from_class(value: PropertyValue | None, source: str) -> Iterator[Reading]:
-    if value is None or value.value is None:
-        return
-    if value.kind == "pressure":
-        yield from _from_value(value, source)
-        return
-    text = str(value.value).strip()
-    reading = read_strength_text(text, f'{source} "{text}"', bare=True)
+def _from_text(text: str, source: str, bare: bool = False) -> Iterator[Said]:
+    reading = read_strength_text(text, source, bare)
     if reading is not None:
         yield reading
 
 
-def _from_value(value: PropertyValue, source: str) -> Iterator[Reading]:
+def _from_sets(sets: Sets) -> Iterator[Said]:
+    general = "Pset_ConcreteElementGeneral"
+    stated = sets.get(general, {}).get("StrengthClass")
+    yield from _from_value(stated, f"{general}.StrengthClass")
+    for name in (general, "Pset_MaterialConcrete"):
+        stated = sets.get(name, {}).get("CompressiveStrength")
+        yield from _from_value(stated, f"{name}.CompressiveStrength")
+
+
+def _from_value(value: PropertyValue | None, source: str) -> Iterator[Said]:
+    """What a property for a strength says: a pressure, or a text such as "C30/37"."""
+    if value is None or value.value is None:
+        return
+    if value.kind == "pressure":
+        yield _pressure(value, source)
+        return
+    given = value.value if isinstance(value.value, tuple) else (value.value,)
+    text = ", ".join(str(each).strip() for each in given)
+    yield from _from_text(text, f'{source} "{text}"', bare=True)
+
+
+def _pressure(value: PropertyValue, source: str) -> Said:
     number = value.number
-    if number is not None and value.kind == "pressure":
-        yield Reading(number, number, source)
+    if number is None or math.isnan(number):
+        return Unread(source)
+    if not is_credible((number, number)):
+        return Unread(source, number)
+    return Reading(number, number, source)
