@@ -122,6 +122,8 @@ def what_is_wrong(error: Exception) -> str:
 
 def concatenated(first: BarColumns, second: BarColumns) -> BarColumns:
     """The bars of both, in the order of the products."""
+    if not len(second.product):
+        return first
     count = len(first.product)
     product = np.concatenate((first.product, second.product))
     order = np.argsort(product, kind="stable")

@@ -50,7 +50,7 @@ class BarTable:
 
     def label(self, bar: int) -> str:
         """What people call a bar."""
-        name, step_id = self.names[bar], int(self.step_ids[bar])
+        name, step_id = self.names[bar], self.step_ids.item(bar)
         return f"{name} #{step_id}" if name else f"#{step_id}"
 
 

@@ -24,7 +24,7 @@ from ifccheck.ifc.bar_columns import (
 )
 from ifccheck.ifc.bar_data import Data
 from ifccheck.ifc.bar_paths import Bools, Ints
-from ifccheck.ifc.bar_samples import offsets, spread
+from ifccheck.ifc.bar_samples import offsets, others, spread
 from ifccheck.ifc.bar_shapes import Strand
 from ifccheck.ifc.bar_texts import BarTexts, read_bar_texts
 from ifccheck.ifc.entity import ILL_TYPED, UnreadableError
@@ -100,7 +100,7 @@ def read_plain_bars(readers: BarReaders, table: StepTable, bars: Ints) -> tuple[
     wrong = _wrong((shapes, parents, names, data))
     columns = _columns(texts.place, wrong.keys(), chains, (shapes, parents, names, data))
     unreadable = {int(texts.place[row]): text for row, text in wrong.items()}
-    return Gathered(columns, unreadable), np.setdiff1d(np.arange(len(bars)), texts.place)
+    return Gathered(columns, unreadable), others(len(bars), texts.place)
 
 
 def _read_shapes(readers: BarReaders, table: StepTable, chains: Chains) -> _Shapes:
@@ -116,7 +116,7 @@ def _read_shapes(readers: BarReaders, table: StepTable, chains: Chains) -> _Shap
         thickness[shape] = diameter
     wrong: list[str | None] = [None] * len(row)
     strands: list[tuple[int, int, int]] = []
-    for shape in np.setdiff1d(np.arange(len(row)), read).tolist():
+    for shape in others(len(row), read).tolist():
         found, wrong[shape] = _tried(lambda at: _strands(readers, chains, at), int(row[shape]))
         if found is not None:
             thickness[shape] = thinnest(found)

@@ -92,7 +92,7 @@ def _physical(
 
 def _tied_bars(context: Context, finder: Hosts) -> tuple[Ints, BarHosts]:
     """Bars that may lie in one of the beams, by STEP ids, and how each is tied."""
-    bars = np.fromiter(_bars(context), dtype=np.intp)
+    bars = np.array(list(_bars(context)), dtype=np.intp)
     ties = finder.of_all(bars)
     near = ~ties.tied("elsewhere")
     return bars[near], ties.take(near)
@@ -100,8 +100,7 @@ def _tied_bars(context: Context, finder: Hosts) -> tuple[Ints, BarHosts]:
 
 def _bars(context: Context) -> Iterator[int]:
     """STEP ids of bars, and of other elements whose type is that of a bar."""
-    for bar in context.file.by_type("IfcReinforcingBar"):
-        yield bar.id()
+    yield from [bar.id() for bar in context.file.by_type("IfcReinforcingBar")]
     types = {entity.id() for entity in _instances(context, "IfcReinforcingBarType")}
     if types:
         for step_id, type_id in context.relations.types.items():

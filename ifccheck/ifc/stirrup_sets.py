@@ -10,7 +10,7 @@ import numpy as np
 
 from ifccheck.ifc.bar_paths import Bools, Floats, Ints
 from ifccheck.ifc.bar_pieces import CentreLines, Pieces, count_by_row
-from ifccheck.ifc.bar_samples import offsets, spread
+from ifccheck.ifc.bar_samples import offsets, others, spread
 
 SQUARE_DIAMETERS, SQUARE_SLOPE = 3.0, 0.1
 """A stirrup reaches along the beam by no more than this many diameters, or this part of its
@@ -185,7 +185,7 @@ class Zone:
 
     def shifted(self, places: int) -> Zone:
         """The same zone where other places stand before."""
-        return replace(self, first=self.first + places, last=self.last + places)
+        return Zone(self.start, self.end, self.spacing, self.first + places, self.last + places)
 
 
 def gather_places(
@@ -197,7 +197,7 @@ def gather_places(
     """
     place = _same_place(ties, beam, diameter)
     twice = _duplicates(ties, place)
-    kept = np.setdiff1d(np.arange(len(place)), twice)
+    kept = others(len(place), twice)
     width = ties.high[:, 0] - ties.low[:, 0]
     order = kept[np.lexsort((width[kept], place[kept]))]
     first = np.flatnonzero(np.diff(place[order], prepend=-1))
