@@ -221,10 +221,10 @@ def names(marked: tuple[Opened, Model], *patterns: str, where: str | None = None
     return [number for number, beam in enumerate(model.beams) if beam.key in keys]
 
 
-def test_patterns_try_tags_before_names(marked: tuple[Opened, Model]) -> None:
-    assert names(marked, "T1") == [0]  # the tag of one beam, though the name of another
+def test_patterns_reach_tags_or_names(marked: tuple[Opened, Model]) -> None:
+    assert names(marked, "T2") == [1]
     assert names(marked, "B-1") == [0, 4]
-    assert names(marked, "T*") == [0, 1]
+    assert names(marked, "T2*") == [1]
     assert names(marked, "B-*") == [0, 1, 4]  # case counts
     assert names(marked, "b-1", "x") == [2, 3]
     assert names(marked, "*") == [0, 1, 2, 3, 4]
@@ -232,6 +232,29 @@ def test_patterns_try_tags_before_names(marked: tuple[Opened, Model]) -> None:
     assert names(marked, "B-?") == []
     assert names(marked, "B-[12]") == []
     assert names(marked, "") == []
+
+
+@pytest.mark.parametrize("pattern", ["T1", "T*", "*1"])
+def test_a_mark_that_is_the_tag_of_one_beam_and_the_name_of_another(
+    marked: tuple[Opened, Model], pattern: str
+) -> None:
+    """Whichever it loaded, it would leave out the other."""
+    opened, model = marked
+    with pytest.raises(BriefError, match="fits the Tag of one beam") as error:
+        names(marked, pattern)
+    assert model.beams[0].guid in str(error.value)
+    assert "and the Name of another" in str(error.value)
+    assert select(opened, model.beams, [model.beams[0].guid], None) == (model.beams[0].key,)
+
+
+def test_a_mark_that_is_tag_and_name_of_one_beam() -> None:
+    building = Building("IFC4")
+    simple(building, Name="B-1", Tag="B-1")
+    simple(building, Name="B-2", Tag="B-2")
+    opened = building.open()
+    model = read_model(opened, {})
+    assert select(opened, model.beams, ["B-1"], None) == (model.beams[0].key,)
+    assert len(select(opened, model.beams, ["B-*"], None)) == 2
 
 
 def test_exact_globalid_goes_first_and_wildcards_never_reach_it(

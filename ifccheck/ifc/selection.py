@@ -8,6 +8,7 @@ from typing import Any, Protocol
 
 from ifccheck.beam import Beam
 from ifccheck.errors import BriefError
+from ifccheck.units import clipped
 
 Field = Callable[[Beam], str]
 
@@ -30,8 +31,9 @@ def select(
     """Return the keys of the beams that the patterns or the query reach, in model order.
 
     A pattern is tried as a GlobalId, then on Tags, then on Names; ``*`` stands for any text.
-    ``where`` is an element query of ifcopenshell. Raises BriefError where the query cannot be
-    understood or names a class that the model's schema has not.
+    ``where`` is an element query of ifcopenshell. Raises BriefError where a pattern fits the
+    Tags of some beams and the Names of others, where the query cannot be understood, or where it
+    names a class that the model's schema has not.
     """
     if where is not None:
         chosen = _answer(opened, beams, where)
@@ -48,16 +50,30 @@ def _matched(beams: Sequence[Beam], pattern: str) -> list[str]:
     if pattern.strip("*") == "" and pattern:
         return [beam.key for beam in beams]
     matches = _matcher(pattern)
-    for field in MARKS if "*" in pattern else (*IDENTIFIERS, *MARKS):
-        found = [beam.key for beam in beams if matches(field(beam))]
-        if found:
-            return found
-    return []
+    for identifier in () if "*" in pattern else IDENTIFIERS:
+        if found := [beam for beam in beams if matches(identifier(beam))]:
+            return [beam.key for beam in found]
+    tagged = [beam for beam in beams if matches(beam.tag)]
+    named = [beam for beam in beams if matches(beam.name)]
+    _require_one_kind(pattern, tagged, named)
+    return [beam.key for beam in tagged or named]
+
+
+def _require_one_kind(pattern: str, tagged: Sequence[Beam], named: Sequence[Beam]) -> None:
+    """Refuse a pattern that fits the Name of a beam that its Tags would leave out."""
+    keys = {beam.key for beam in tagged}
+    others = [beam for beam in named if beam.key not in keys]
+    if tagged and others:
+        one, other = tagged[0], others[0]
+        raise BriefError(
+            f"{clipped(pattern)} fits the Tag of one beam ({clipped(one.tag)}, GlobalId {one.guid})"
+            f" and the Name of another ({clipped(other.name)}, GlobalId {other.guid}): give the"
+            " GlobalId of each that is meant, or a query of one kind, where = 'IfcBeam, Tag=...'"
+        )
 
 
 IDENTIFIERS: tuple[Field, ...] = (lambda beam: beam.guid, lambda beam: beam.key)
 """A key is a GlobalId, or one of several beams that share it: ``GlobalId~2``."""
-MARKS: tuple[Field, ...] = (lambda beam: beam.tag, lambda beam: beam.name)
 
 
 def _matcher(pattern: str) -> Callable[[str], bool]:
