@@ -187,7 +187,7 @@ def _found(
     """Utilisation and resistance of each limit state of the standard at the elements."""
     found = {}
     for quick, basis in evaluations:
-        every = evaluate_everywhere(quick, basis, elements.station.size, elements.total.take)
+        every = evaluate_everywhere(quick, basis, elements)
         for state, utilisation, resistance in zip(quick.states, *every, strict=True):
             found[state.name] = utilisation, resistance
     return [found[state.name] for state in standard.limit_states]

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass, fields
+from dataclasses import dataclass
 from typing import TypeVar
 
 import numpy as np
@@ -13,7 +13,9 @@ from ifccheck.mechanics.arrays import Bools, Demand, Floats, Ints
 
 Values = TypeVar("Values", Floats, Bools)
 
-_ACTING = ("moment", "shear", "critical_shear")
+NUMBERS = ("moment", "shear", "critical_shear", "peak_sagging", "peak_hogging")
+"""Fields of a Demand that grow with the loads"""
+_ACTING = NUMBERS[:3]
 
 
 @dataclass(frozen=True, slots=True)
@@ -32,9 +34,23 @@ class Elements:
     """First element of each station (N)"""
     first_of_beam: Ints
     """First element of each beam (B)"""
-    total: Demand
-    shares: tuple[Demand, ...]
-    """The part that each rated case has"""
+    total: Floats
+    """The numbers of a Demand, one row each (NUMBERS, E)"""
+    shares: tuple[Floats, ...]
+    """The part that each rated case has (NUMBERS, E)"""
+    can_sag: Bools
+    can_hog: Bools
+    """For every multiple of a rated case, as in a Demand (E)"""
+
+    def demand(self, rows: slice) -> Demand:
+        """What acts at a stretch of the elements."""
+        return demand_of(self.total[:, rows], self.can_sag[rows], self.can_hog[rows])
+
+
+def demand_of(numbers: Floats, can_sag: Bools, can_hog: Bools) -> Demand:
+    """A Demand of its numbers (NUMBERS, E)."""
+    moment, shear, critical_shear, peak_sagging, peak_hogging = numbers
+    return Demand(moment, shear, critical_shear, peak_sagging, peak_hogging, can_sag, can_hog)
 
 
 def distinct_elements(acting: Demands, beam: Ints) -> Elements:
@@ -52,13 +68,14 @@ def distinct_elements(acting: Demands, beam: Ints) -> Elements:
     station, row = np.nonzero(np.ascontiguousarray(kept.T))
     combination, element = row // shape[1], row * shape[-1] + station
 
-    def at(demand: Demand) -> Demand:
-        return Demand(
-            **{
-                f.name: _gather(getattr(demand, f.name), combination, station, element)
-                for f in fields(Demand)
-            }
-        )
+    def at(values: Values) -> Values:
+        return _gather(values, combination, station, element)
+
+    def numbers(demand: Demand) -> Floats:
+        rows = np.empty((len(NUMBERS), element.size))
+        for row, name in zip(rows, NUMBERS, strict=True):
+            row[:] = at(getattr(demand, name))
+        return rows
 
     return Elements(
         element=element,
@@ -66,8 +83,10 @@ def distinct_elements(acting: Demands, beam: Ints) -> Elements:
         beam=beam[station],
         first_of_station=np.flatnonzero(np.diff(station, prepend=-1)),
         first_of_beam=np.flatnonzero(np.diff(beam[station], prepend=-1)),
-        total=at(acting.total),
-        shares=tuple(at(share) for share in acting.shares),
+        total=numbers(acting.total),
+        shares=tuple(numbers(share) for share in acting.shares),
+        can_sag=at(acting.total.can_sag),
+        can_hog=at(acting.total.can_hog),
     )
 
 

@@ -7,23 +7,22 @@ else stays at its full value.
 
 from __future__ import annotations
 
-from collections.abc import Callable, Sequence
+from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
 from typing import Any
 
 import numpy as np
 
-from ifccheck.mechanics.arrays import Bools, Demand, Floats, Ints
-from ifccheck.rating.elements import Elements, greatest_of_beams
+from ifccheck.mechanics.arrays import Bools, Floats, Ints
+from ifccheck.rating.elements import Elements, demand_of, greatest_of_beams
 from ifccheck.standards import LimitState, Quick
 
 GREATEST_FACTOR = 1000.0
 """A case that does not govern up to this many times its loads is not limited."""
 _TOLERANCE = 1e-9
 _MOST_STEPS = 200
-_NUMBERS = ("moment", "shear", "critical_shear", "peak_sagging", "peak_hogging")
 _TURNING = slice(0, 3)
-"""Those that may change their sense"""
+"""The numbers of a demand that may change their sense"""
 _AT_ONCE = 32768
 """Elements evaluated together, so that their arrays stay in the processor's cache"""
 _INTERIOR = (0.1, 0.35, 0.7)
@@ -51,10 +50,10 @@ class _Problem:
     quick: Quick
     basis: Any
     """What the limit states need at each element"""
-    rest: Floats
-    """The numbers of a Demand without the case (5, E)"""
+    total: Floats
+    """The numbers of a Demand (NUMBERS, E)"""
     share: Floats
-    """The part of the case (5, E)"""
+    """The part of the case"""
     can_sag: Bools
     can_hog: Bools
     beam: Ints
@@ -67,14 +66,14 @@ class _Problem:
         What cannot be worked out counts as exceeding.
         """
 
-        def demand(rows: slice) -> Demand:
-            grown = self.share[:, rows] * factor[self.beam[rows]]
-            grown += self.rest[:, rows]
-            moment, shear, critical, sagging, hogging = grown
-            sag, hog = self.can_sag[rows], self.can_hog[rows]
-            return Demand(moment, shear, critical, sagging, hogging, sag, hog)
-
-        found, _ = evaluate_everywhere(self.quick, self.basis, self.beam.size, demand)
+        found = np.empty((len(self.quick.states), self.beam.size))
+        for rows in stretches(self.beam.size):
+            more = self.share[:, rows] * (factor[self.beam[rows]] - 1.0)
+            more += self.total[:, rows]
+            demand = demand_of(more, self.can_sag[rows], self.can_hog[rows])
+            evaluated = self.quick.evaluate(self.basis.take(rows), demand)
+            for state, (utilisation, _) in enumerate(evaluated):
+                found[state, rows] = utilisation
         found[np.isnan(found)] = np.inf
         return found
 
@@ -83,7 +82,7 @@ class _Problem:
         return _Problem(
             quick=self.quick,
             basis=self.basis.take(rows),
-            rest=self.rest[:, rows],
+            total=self.total[:, rows],
             share=self.share[:, rows],
             can_sag=self.can_sag[rows],
             can_hog=self.can_hog[rows],
@@ -92,15 +91,18 @@ class _Problem:
         )
 
 
-def evaluate_everywhere(
-    quick: Quick, basis: Any, size: int, demand: Callable[[slice], Demand]
-) -> tuple[Floats, Floats]:
-    """Utilisation and resistance of limit states at all elements (S, E), given the demand of a
-    stretch of them."""
-    utilisation, resistance = np.empty((2, len(quick.states), size))
+def stretches(size: int) -> Iterator[slice]:
+    """Elements, so many at a time that arrays stay in the processor's cache."""
     for start in range(0, size, _AT_ONCE):
-        rows = slice(start, start + _AT_ONCE)
-        for state, found in enumerate(quick.evaluate(basis.take(rows), demand(rows))):
+        yield slice(start, start + _AT_ONCE)
+
+
+def evaluate_everywhere(quick: Quick, basis: Any, elements: Elements) -> tuple[Floats, Floats]:
+    """Utilisation and resistance of limit states at all elements (S, E)."""
+    utilisation, resistance = np.empty((2, len(quick.states), elements.element.size))
+    for rows in stretches(elements.element.size):
+        evaluated = quick.evaluate(basis.take(rows), elements.demand(rows))
+        for state, found in enumerate(evaluated):
             utilisation[state, rows], resistance[state, rows] = found
     return utilisation, resistance
 
@@ -109,7 +111,7 @@ def rating_factors(
     states: Sequence[LimitState],
     evaluations: Sequence[tuple[Quick, Any]],
     elements: Elements,
-    share: Demand,
+    share: Floats,
     x: Floats,
     ceiling: Floats | None = None,
 ) -> Factors:
@@ -124,7 +126,7 @@ def rating_factors(
     elements
         Demand of everything.
     share
-        The part of it that the rated case makes (E).
+        The part of it that the rated case makes (NUMBERS, E).
     x
         Stations [mm] (N).
     ceiling
@@ -160,20 +162,16 @@ class _Least:
 
 
 def _problems(
-    evaluations: Sequence[tuple[Quick, Any]], elements: Elements, share: Demand
+    evaluations: Sequence[tuple[Quick, Any]], elements: Elements, share: Floats
 ) -> list[_Problem]:
     """The limit states at the elements of the beams that the rated case acts on."""
-    moved = (share.moment != 0.0) | (share.shear != 0.0)
+    moved = np.any(share[:2] != 0.0, axis=0)
     reached = np.logical_or.reduceat(moved, elements.first_of_beam)[elements.beam]
     if not reached.any():
         return []
-    part, whole = (
-        np.stack([getattr(demand, name) for name in _NUMBERS]) for demand in (share, elements.total)
-    )
-    rest = whole - part
-    sag, hog = elements.total.can_sag, elements.total.can_hog
+    e = elements
     problems = [
-        _Problem(quick, basis, rest, part, sag, hog, elements.beam, elements.element)
+        _Problem(quick, basis, e.total, share, e.can_sag, e.can_hog, e.beam, e.element)
         for quick, basis in evaluations
     ]
     if reached.all():
@@ -228,7 +226,8 @@ def _look_inside(problem: _Problem, over: Bools, above: Floats, high: Floats) ->
 
 def _may_turn(problem: _Problem) -> Bools:
     """Elements whose moment or shear the case first relieves."""
-    opposed = problem.rest[_TURNING] * problem.share[_TURNING] < 0.0
+    share = problem.share[_TURNING]
+    opposed = (problem.total[_TURNING] - share) * share < 0.0
     turning: Bools = np.any(opposed, axis=0)
     return turning
 
