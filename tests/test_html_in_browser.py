@@ -2,8 +2,10 @@
 
 from __future__ import annotations
 
+import math
 import re
 from collections.abc import Iterator
+from contextlib import contextmanager
 from pathlib import Path
 from urllib.parse import quote
 
@@ -209,10 +211,71 @@ def pages_of(pdf: bytes) -> int:
     return len(re.findall(rb"/Type\s*/Page\b", pdf))
 
 
-def test_the_summary_prints(opened: Page) -> None:
+PAPERS = {"A4": (210.0, 297.0), "Letter": (215.9, 279.4), "A4 across": (297.0, 210.0)}
+"""Width and height [mm]"""
+MARGINS = (22.0, 26.0)
+"""Of the page rule of the style sheet, both sides together [mm]"""
+PIXELS = 96.0 / 25.4
+BEYOND = """
+[...document.querySelectorAll(%r + ' *')]
+  .filter((e) => e.checkVisibility() && getComputedStyle(e).position !== 'absolute')
+  .filter((e) => e.getBoundingClientRect().right > document.documentElement.clientWidth + 1
+    || (getComputedStyle(e).overflowX !== 'visible' && !(e instanceof SVGElement)
+      && e.scrollWidth > e.clientWidth + 1))
+  .map((e) => e.tagName + '.' + e.className + ': ' + e.textContent.slice(0, 40))
+"""
+
+
+@contextmanager
+def on_paper(page: Page, paper: str) -> Iterator[tuple[int, int]]:
+    """The page laid out in the width that a paper leaves between its margins."""
+    room = [
+        round((mm - margin) * PIXELS) for mm, margin in zip(PAPERS[paper], MARGINS, strict=True)
+    ]
+    page.send("Emulation.setEmulatedMedia", media="print")
+    page.size(room[0], room[1])
+    try:
+        yield room[0], room[1]
+    finally:
+        page.send("Emulation.setEmulatedMedia", media="")
+        page.size(1400, 1000)
+
+
+@pytest.mark.parametrize("paper", PAPERS)
+def test_nothing_of_the_summary_is_cut_on_paper(opened: Page, paper: str) -> None:
+    with on_paper(opened, paper) as (_, high):
+        assert opened.run(BEYOND % "#summary") == []
+        heights = (
+            "[...document.querySelectorAll('figure')].map(f => f.getBoundingClientRect().height)"
+        )
+        assert max(opened.run(heights)) < high, "a plan fits on one page"
+
+
+@pytest.mark.parametrize("paper", PAPERS)
+def test_nothing_of_a_sheet_is_cut_on_paper(opened: Page, paper: str) -> None:
+    opened.click(".beams tbody a")
+    opened.wait("document.querySelector('#sheet-view .sheet')")
+    with on_paper(opened, paper):
+        assert opened.run(BEYOND % "#sheet-view") == []
+
+
+def test_the_summary_prints_without_needless_pages(opened: Page) -> None:
+    """The first page, one for every two plans, and two dozen rows of the table on each."""
     pdf = opened.pdf()
     assert pdf.startswith(b"%PDF")
-    assert pages_of(pdf) >= 4
+    plans, rows = len({b.storey for b in REPORT.model.beams}), len(REPORT.ratings)
+    assert pages_of(pdf) <= 1 + plans // 2 + 1 + math.ceil(rows / 24) + 2
+
+
+@pytest.mark.parametrize("width", [700, 1400])
+def test_a_plan_is_whole_in_a_window(opened: Page, width: int) -> None:
+    opened.size(width, 1000)
+    inside = (
+        "[...document.querySelectorAll('.plan')].every(p => p.getBoundingClientRect().right"
+        " <= p.closest('figure').getBoundingClientRect().right)"
+    )
+    assert opened.run(inside)
+    opened.size(1400, 1000)
 
 
 def test_one_sheet_prints_alone(opened: Page) -> None:

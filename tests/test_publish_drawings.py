@@ -16,7 +16,9 @@ from ifccheck.beam import Anchor, Axis, Outline
 from ifccheck.publish.drawings import diagram, section
 from ifccheck.publish.elevation import LEFT, RIGHT, WIDTH, Frame, elevation
 from ifccheck.publish.plan import framing_plans
+from ifccheck.publish.plan_labels import Labels, Stroke
 from ifccheck.publish.svg import thinned
+from ifccheck.publish.words import utilisation_words
 from ifccheck.sheet import Diagram, Sheet
 from tests.reports_made_up import made_up_report, rectangle, tee
 
@@ -349,3 +351,26 @@ def test_the_broken_line_of_an_edge_beam_lies_on_its_stem() -> None:
     across = [y for _, y in numbers(body.get("d") or "")]
     (_, y), *_ = numbers(dashes.get("d") or "")
     assert y == pytest.approx((min(across) + max(across)) / 2.0, abs=0.1)
+
+
+def test_a_plan_tells_how_far_every_beam_falls_short() -> None:
+    for storey in ("Level 1", "Level 2", "Roof"):
+        plan = plan_of(storey)
+        shown = {word for text, _ in letters(plan) for word in text.split("  ")}
+        for beam in (b for b in REPORT.model.beams if b.storey == storey and b.axis):
+            rating = REPORT.ratings[beam.key]
+            if rating.utilisation > 1.0:
+                assert {beam.mark, utilisation_words(rating.utilisation)} <= shown
+
+
+def test_mark_and_utilisation_part_where_no_room_for_both_is_on_one_side() -> None:
+    """Crossing beams leave room for six letters at a time: too few for both, enough for each."""
+    girder = Stroke((0.0, 100.0), (200.0, 100.0), 3.0)
+    crossing = [Stroke((x, 0.0), (x, 200.0), 3.0) for x in (0.0, 50.0, 100.0, 150.0, 200.0)]
+    set_ = Labels([girder, *crossing]).set(girder, "G-101", "1.66", always=False)
+    assert re.findall(r">([^<]+)</text>", set_) == ["G-101", "1.66"]
+    narrow = [Stroke((float(x), 0.0), (float(x), 200.0), 3.0) for x in range(0, 201, 20)]
+    alone = Labels([girder, *narrow]).set(girder, "G-101", "0.66", always=False)
+    assert re.findall(r">([^<]+)</text>", alone) == ["G-101"]
+    both = Labels([girder, *narrow]).set(girder, "G-101", "1.66", always=True)
+    assert re.findall(r">([^<]+)</text>", both) == ["G-101  1.66"]

@@ -21,7 +21,7 @@ from ifccheck.publish.svg import (
     segment,
 )
 from ifccheck.publish.tint import band
-from ifccheck.publish.words import plain, utilisation_words, verdict_phrase
+from ifccheck.publish.words import falls_short, plain, utilisation_words, verdict_phrase
 from ifccheck.rating import Rating
 
 Floats = npt.NDArray[np.float64]
@@ -294,9 +294,10 @@ def _marks(shapes: Sequence[_Shape], sheet: _Sheet, ratings: Mapping[str, Rating
     strokes = {s.beam.key: Stroke(*_ends(s, sheet), _half_width(s) * sheet.scale) for s in shapes}
     labels = Labels(list(strokes.values()))
     for shape in reversed(shapes):
-        mark, used = plain(shape.beam.mark), ratings[shape.beam.key].utilisation
-        texts = [mark] if math.isnan(used) else [f"{mark}  {utilisation_words(used)}", mark]
-        yield labels.set(strokes[shape.beam.key], texts)
+        used = ratings[shape.beam.key].utilisation
+        words = "" if math.isnan(used) else utilisation_words(used)
+        mark, stroke = plain(shape.beam.mark), strokes[shape.beam.key]
+        yield labels.set(stroke, mark, words, always=falls_short(used))
 
 
 def _scale_bar(sheet: _Sheet) -> str:

@@ -11,7 +11,7 @@ from ifccheck.publish.svg import Place, label
 LETTER_HEIGHT, LETTER_WIDTH, LIFT = 9.0, 5.0, 3.0
 STEP = 4.5
 """Distance of the places that stand for a label or a beam."""
-SHARES = (0.5, 0.25, 0.75, 0.35, 0.65)
+SHARES = (0.5, 0.25, 0.75, 0.35, 0.65, 0.15, 0.85, 0.0, 1.0)
 CELL = 24.0
 
 
@@ -48,15 +48,37 @@ class Labels:
             for place in _along(stroke.start, stroke.end):
                 self._beams.setdefault(_cell(place), []).append((place, stroke.half, stroke))
 
-    def set(self, stroke: Stroke, texts: Sequence[str]) -> str:
-        """Return the first of the texts that finds room beside the beam, or nothing."""
-        for clear_of_beams in (True, False):
-            for text in texts:
-                for spot in _spots(stroke, len(text) * LETTER_WIDTH):
-                    if self._free(spot, stroke, clear_of_beams):
-                        self._take(spot)
-                        return label(*spot.middle, text, "mark", spot.turn)
+    def set(self, stroke: Stroke, mark: str, used: str, *, always: bool) -> str:
+        """Return a beam's mark and how much it is used, where they find room beside it.
+
+        They stand on one line, or else apart. Where they find no room clear of other beams the
+        mark stands alone, or, if both must ``always`` be shown, over those beams.
+        """
+        whole = [[f"{mark}  {used}"], [mark, used]] if used else []
+        clear = [(each, True) for each in whole]
+        across = [(each, False) for each in whole]
+        alone = [([mark], True), ([mark], False)]
+        for texts, clear_of_beams in clear + (across + alone if always else alone + across):
+            if spots := self._room(stroke, texts, clear_of_beams):
+                for spot in spots:
+                    self._take(spot)
+                placed = zip(spots, texts, strict=True)
+                return "".join(label(*s.middle, text, "mark", s.turn) for s, text in placed)
         return ""
+
+    def _room(self, stroke: Stroke, texts: Sequence[str], clear_of_beams: bool) -> list[_Spot]:
+        """A spot for each of the texts, or none at all."""
+        found: list[_Spot] = []
+        for text in texts:
+            free = (
+                spot
+                for spot in _spots(stroke, len(text) * LETTER_WIDTH)
+                if self._free(spot, stroke, clear_of_beams) and not _meet(spot, found)
+            )
+            if (spot := next(free, None)) is None:
+                return []
+            found.append(spot)
+        return found
 
     def _free(self, spot: _Spot, own: Stroke, clear_of_beams: bool) -> bool:
         return not any(
@@ -81,6 +103,15 @@ class Labels:
     def _take(self, spot: _Spot) -> None:
         for place in spot.taken:
             self._letters.setdefault(_cell(place), []).append(place)
+
+
+def _meet(spot: _Spot, others: Sequence[_Spot]) -> bool:
+    return any(
+        math.dist(place, taken) < LETTER_HEIGHT
+        for other in others
+        for taken in other.taken
+        for place in spot.taken
+    )
 
 
 def _spots(stroke: Stroke, width: float) -> Iterator[_Spot]:
