@@ -39,12 +39,15 @@ from ifccheck.frame.contacts import between_reactions, find_contacts, reactions_
 from ifccheck.frame.spans import single_span, support_faces
 from ifccheck.rating.subject import Subject, Unrated
 from ifccheck.standards import Standard
+from ifccheck.units import show
 
 Row = TypeVar("Row", Load, Remark)
 
 _DIRECT_CLASSES = ("IfcColumn", "IfcWall", "IfcFooting", "IfcPile", "IfcBearing")
 _CRANE = "crane loads stand where the brief puts them: they are not moved, and carry no impact"
 _LAYOUT_AGGREGATE = 20.0
+_WEIGHT_OF_DENSITY = 9.80665e-9
+"""Unit weight [N/mm3] for each kg/m3, at standard gravity."""
 _THROUGH_THE_WEB = "loads are assumed to act through the web: torsion is not checked"
 
 
@@ -177,9 +180,7 @@ def _one(
         reinforcement_source=steel.source,
         loads=tuple(loads),
         concrete_strength=concrete.strength,
-        unit_weight=Given(
-            sources.brief.basis.concrete_unit_weight, "brief, basis.concrete_unit_weight"
-        ),
+        unit_weight=concrete.unit_weight,
         density_factor=concrete.density_factor,
         aggregate_size=concrete.aggregate_size,
         bar_yield=steel.bar_yield,
@@ -211,6 +212,7 @@ class _Concrete:
     strength: Given
     density_factor: Given
     aggregate_size: Given
+    unit_weight: Given
 
 
 def _first(*given: Given | None) -> Given | None:
@@ -232,7 +234,26 @@ def _concrete(beam: Beam, sources: _Sources, findings: _Findings) -> _Concrete:
             factor, density.source if density else "normal density", assumed=density is None
         ),
         aggregate_size=_aggregate(stated, sources, findings),
+        unit_weight=_unit_weight(density, sources, findings),
     )
+
+
+def _unit_weight(density: Given | None, sources: _Sources, findings: _Findings) -> Given:
+    """The brief's unit weight [N/mm3], or that of a density stated for the beam if greater.
+
+    A lesser density changes nothing: the brief's figure holds the weight of the steel too.
+    """
+    brief = Given(sources.brief.basis.concrete_unit_weight, "brief, basis.concrete_unit_weight")
+    if density is None or density.value * _WEIGHT_OF_DENSITY <= brief.value:
+        return brief
+    stated = Given(density.value * _WEIGHT_OF_DENSITY, density.source)
+    text = (
+        f"self weight by {show(density.value, 'density')} from {density.source}:"
+        f" {show(stated.value, 'unit_weight')}, more than the"
+        f" {show(brief.value, 'unit_weight')} of the brief"
+    )
+    findings.remarks.append(Remark(findings.key, "basis", text, "doubt"))
+    return stated
 
 
 def _strength(

@@ -377,6 +377,38 @@ def test_a_default_does_not_replace_a_strength_that_cannot_be_read(
     check_adequate(rated(tmp_path, told, text=word))
 
 
+def with_density(value: str) -> str:
+    model = hall(Beam())
+    properties = "IFCPROPERTYSINGLEVALUE('MassDensity',$,IFCMASSDENSITYMEASURE({}),$)"
+    concrete = number_of(model, "IFCMATERIAL('Concrete C30/37'")
+    return with_lines(
+        model,
+        properties.format(value),
+        f"IFCMATERIALPROPERTIES('Pset_MaterialCommon',$,(#9001),#{concrete})",
+    )
+
+
+@pytest.mark.parametrize(
+    ("density", "weight", "source"),
+    [
+        ("2400.", "24.0 kN/m3", "brief"),  # 2400 x 9.80665 = 23.5 kN/m3 without the steel
+        ("2447.", "24.0 kN/m3", "brief"),
+        ("3000.", "29.4 kN/m3", "MassDensity"),
+    ],
+)
+def test_a_greater_density_than_the_brief_weighs_what_it_does(
+    tmp_path: Path, density: str, weight: str, source: str
+) -> None:
+    rating = rated(tmp_path, with_density(density))
+    (told,) = (item for item in rating.basis if item.name == "ConcreteUnitWeight")
+    assert str(told.value) == weight
+    assert source in told.source
+    assert any("self weight by" in remark.text for remark in rating.remarks) is (source != "brief")
+    heavier = rating.utilisation / rated(tmp_path, SOUND).utilisation
+    own, floor = 1.25 * 0.18 * float(str(told.value).split()[0]), 1.5 * 10.0  # kN/m
+    assert heavier == pytest.approx((own + floor) / (1.25 * 0.18 * 24.0 + floor), rel=2e-3)
+
+
 @pytest.mark.parametrize("material", ["Structural steel S355", "Timber GL24h"])
 def test_out_of_scope_on_positive_evidence_alone(tmp_path: Path, material: str) -> None:
     other = Beam("B-2", at=(0.0, 9000.0, 3000.0), material=material, notation=None)
