@@ -183,6 +183,10 @@ class Zone:
     """The places that bound its gaps, the last included."""
     last: int
 
+    def between(self, start: float, end: float) -> Zone:
+        """The same zone with other ends."""
+        return Zone(start, end, self.spacing, self.first, self.last)
+
     def shifted(self, places: int) -> Zone:
         """The same zone where other places stand before."""
         return Zone(self.start, self.end, self.spacing, self.first + places, self.last + places)
@@ -261,8 +265,9 @@ def zones_of_one_spacing(
     if len(xs) < 2:
         return []
     zones = _without_lone_close_gaps(list(_joined(xs, areas, steel)))
-    zones[0] = replace(zones[0], start=_reach(zones[0].start, zones[0].spacing, 0.0, -1.0))
-    zones[-1] = replace(zones[-1], end=_reach(zones[-1].end, zones[-1].spacing, length, 1.0))
+    first, last = zones[0], zones[-1]
+    zones[0] = first.between(_reach(first.start, first.spacing, 0.0, -1.0), first.end)
+    zones[-1] = zones[-1].between(zones[-1].start, _reach(last.end, last.spacing, length, 1.0))
     return zones
 
 
@@ -288,6 +293,8 @@ def _joined(xs: Sequence[float], areas: Sequence[float], steel: Sequence[int]) -
 
 def _without_lone_close_gaps(zones: list[Zone]) -> list[Zone]:
     """Give a zone of one gap that is closer than all its neighbours their least spacing."""
+    if len(zones) == 1:
+        return zones
     settled = []
     for index, zone in enumerate(zones):
         beside = [z.spacing for z in zones[max(index - 1, 0) : index + 2] if z is not zone]
