@@ -199,6 +199,42 @@ def test_a_permanent_case_takes_one_factor_as_a_whole() -> None:
     assert state(rating, "FlexureHogging").demand == pytest.approx(1.4 * greatest, rel=1e-6)
 
 
+def lifts(rating: Rating) -> list[str]:
+    return [remark.text for remark in rating.remarks if "is lifted by" in remark.text]
+
+
+def test_a_support_that_is_lifted_is_told() -> None:
+    """40 kN up at 5.0 m, 4.9 m from the start of a span of 5.8 m: of 1.5 x 40 = 60 kN the end
+    takes 50.7 kN, its own weight presses it with 0.9 x 4.32 x 6.0 / 2 = 11.7 kN."""
+    rating = of(subject(top=4, loads=(point("press", -40e3, 5000.0),)))
+    (text,) = lifts(rating)
+    pull = 60.0 * 4900.0 / 5800.0 - 0.9 * OWN * 6000.0 / 2.0 / 1e3
+    assert f"its end is lifted by up to {pull:.1f} kN under " in text
+    assert "what holds it down is not checked" in text
+
+
+def test_both_supports_may_be_lifted() -> None:
+    texts = lifts(lifted(60e3))
+    assert [text[:7] for text in texts] == ["its sta", "its end"]
+
+
+def test_supports_that_press_are_not_told() -> None:
+    """At midspan 1.5 P / 2 must exceed 0.9 x 4.32 x 6.0 / 2 = 11.66 kN: P > 15.55 kN."""
+    assert lifts(lifted(15.5e3)) == []
+    assert len(lifts(lifted(15.6e3))) == 2
+    assert lifts(of(subject(loads=(line("floor", 10.0),)))) == []
+    # a live load presses nothing that may not be there
+    assert len(lifts(lifted(15.6e3, line("floor", 10.0)))) == 2
+
+
+def test_a_fixed_end_holds_itself() -> None:
+    beam = subject(
+        length=2200.0, top=4, bearing=0.0, ends=("fixed", "free"),
+        loads=(point("press", -40e3, 1500.0),),
+    )  # fmt: skip
+    assert lifts(of(replace(beam, faces=(0.0, 2200.0)))) == []
+
+
 # The face in tension -----------------------------------------------------------------------------
 
 

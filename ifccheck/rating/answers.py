@@ -15,6 +15,7 @@ from ifccheck.rating.basis import bases_of
 from ifccheck.rating.batch import Batch, Envelope
 from ifccheck.rating.results import BasisItem, LimitStateRating, Rating, SafeLoad
 from ifccheck.rating.subject import Subject, Unrated
+from ifccheck.rating.uplift import uplift_remarks
 from ifccheck.standards import LimitState, Standard
 from ifccheck.units import show
 
@@ -148,8 +149,11 @@ def _safe_loads(
 
 
 def _notes(batch: Batch) -> list[list[Remark]]:
-    """The standard's remarks on each beam, with the stretch that each holds for."""
-    remarks: list[list[Remark]] = [[] for _ in batch.subjects]
+    """On each beam: supports that are lifted, and what the standard remarks of a stretch."""
+    remarks = [
+        uplift_remarks(batch.uplift, row, subject.beam.key, batch.places)
+        for row, subject in enumerate(batch.subjects)
+    ]
     x, beam = batch.stations.x, batch.stations.beam
     for note in batch.notes:
         mask = note.mask & _in_tension(batch.envelope, note.face) if note.face else note.mask

@@ -35,6 +35,7 @@ from ifccheck.rating.elements import Elements, distinct_elements, first_greatest
 from ifccheck.rating.factors import Factors, evaluate_everywhere, rating_factors
 from ifccheck.rating.subject import Subject
 from ifccheck.rating.turning import Growth, with_turns
+from ifccheck.rating.uplift import Uplift, uplift_of
 from ifccheck.rating.utilisation import worst_of
 from ifccheck.rating.verdict import Evaluated
 from ifccheck.standards import LimitState, Note, Options, Quick, Standard
@@ -73,6 +74,7 @@ class Batch:
     """By rated case"""
     places: verdict.Places
     envelope: Envelope
+    uplift: Uplift
     notes: tuple[Note, ...]
     basis: dict[str, Floats]
 
@@ -149,7 +151,6 @@ def rate_frame(
         rated,
         unbounded=frame.side_loaded,
     )
-    first = stations.first_rows(len(subjects))
     elements = distinct_elements(acting, stations.beam)
     evaluations = [
         (quick, quick.basis(prepared).take(elements.station)) for quick in standard.quick
@@ -158,7 +159,7 @@ def rate_frame(
     return Batch(
         subjects=tuple(subjects),
         stations=stations,
-        first=first,
+        first=stations.first_rows(len(subjects)),
         prepared=prepared,
         demand=acting.total,
         states=tuple(
@@ -176,6 +177,7 @@ def rate_frame(
         },
         places=_places(subjects, cases, combinations, effects, stations),
         envelope=_envelope(standard, acting.total, found, elements),
+        uplift=uplift_of(effects, frame.spans),
         notes=standard.notes(prepared),
         basis=standard.basis(prepared),
     )

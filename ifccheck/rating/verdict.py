@@ -42,7 +42,10 @@ class Places:
 
     def combination(self, element: int, beam: int) -> str:
         """Name of the combination of an element, without what does not act on its beam."""
-        row = element // self.x.size // self.arrangements
+        return self.combination_of(element // self.x.size // self.arrangements, beam)
+
+    def combination_of(self, row: int, beam: int) -> str:
+        """Name of a combination by its row, without what does not act on a beam."""
         return _label(self.combinations[row], self.natures[beam])
 
     def position(self, element: int) -> float:

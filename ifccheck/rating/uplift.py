@@ -1,0 +1,65 @@
+"""Supports that a combination lifts: what would hold the beam down is not checked."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+
+from ifccheck.analysis.effects import Effects
+from ifccheck.analysis.spans import PINNED, SpanTable
+from ifccheck.beam import Remark
+from ifccheck.mechanics.arrays import Bools, Floats, Ints
+from ifccheck.rating.verdict import Places
+from ifccheck.units import show
+
+ROUNDING = 1e-9
+"""Share of what presses and lifts a support below which its reaction is zero"""
+
+ENDS = ("start", "end")
+
+
+@dataclass(frozen=True, slots=True)
+class Uplift:
+    """The greatest upward pull on either support of each beam (B, 2)."""
+
+    force: Floats
+    """[N]; 0 where no combination lifts the support"""
+    combination: Ints
+    """Row of the combination that lifts it most"""
+
+
+def uplift_of(effects: Effects, spans: SpanTable) -> Uplift:
+    """The greatest pull on each pinned support in any combination.
+
+    pull = -min over the combinations of sum(factor x reaction), each case by the factor that
+    makes its part least
+
+    Parameters
+    ----------
+    effects
+        Reactions of each case alone (K, B, 2), and its factors (C, K).
+    spans
+        How each beam is held (B).
+    """
+    reactions = effects.cases.reactions
+    pressing, lifting = np.maximum(reactions, 0.0), np.maximum(-reactions, 0.0)
+    up = np.einsum("ck,kbe->cbe", effects.greater, lifting)
+    down = np.einsum("ck,kbe->cbe", effects.lesser, pressing)
+    net = np.where(up - down > ROUNDING * (up + down), up - down, 0.0)
+    pinned: Bools = np.stack([spans.start_kind, spans.end_kind], axis=-1) == PINNED
+    return Uplift(np.where(pinned, net.max(axis=0), 0.0), net.argmax(axis=0))
+
+
+def uplift_remarks(uplift: Uplift, beam: int, key: str, places: Places) -> list[Remark]:
+    """What to tell of the supports of one beam that are lifted."""
+    found = []
+    for end, name in enumerate(ENDS):
+        force, row = float(uplift.force[beam, end]), int(uplift.combination[beam, end])
+        if force > 0.0:
+            text = (
+                f"its {name} is lifted by up to {show(force, 'force')} under"
+                f" {places.combination_of(row, beam)}: what holds it down is not checked"
+            )
+            found.append(Remark(key, "demand", text, "doubt"))
+    return found
