@@ -58,7 +58,7 @@ def report_of(
         brief_sha256=brief.sha256,
         model=model,
         ratings=ratings,
-        sheet=_sheets(model, batches, ratings),
+        sheet=_sheets(model, batches, ratings, cases),
         lines=tuple(subject.line for subject in gathered.subjects),
         cases=tuple(_case(case, gathered, ratings) for case in cases if case.rated),
         combinations=tuple(combinations),
@@ -68,7 +68,10 @@ def report_of(
 
 
 def _sheets(
-    model: Model, batches: Sequence[Batch], ratings: Mapping[str, Rating]
+    model: Model,
+    batches: Sequence[Batch],
+    ratings: Mapping[str, Rating],
+    cases: Sequence[Case],
 ) -> Callable[[str], Sheet]:
     """A function that makes the sheet of a beam; a batch's details are worked out when first
     asked for."""
@@ -87,7 +90,7 @@ def _sheets(
         if number not in makers:
             batch = batches[number]
             own = [ratings[subject.beam.key] for subject in batch.subjects]
-            makers[number] = sheet_maker(batch, own)
+            makers[number] = sheet_maker(batch, own, cases)
         return makers[number](row)
 
     return sheet

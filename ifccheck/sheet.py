@@ -7,21 +7,37 @@ from __future__ import annotations
 
 import math
 import re
-from collections.abc import Callable, Sequence
+from collections.abc import Callable, Iterator, Sequence
 from dataclasses import dataclass
 from typing import Any
 
 import numpy as np
 import numpy.typing as npt
 
-from ifccheck.beam import Bars, Beam, Load, Outline, Span, Stirrups
+from ifccheck.beam import (
+    SELF,
+    Bars,
+    Beam,
+    Case,
+    Given,
+    Load,
+    Nature,
+    Outline,
+    Span,
+    Stirrups,
+)
 from ifccheck.rating.batch import Batch
 from ifccheck.rating.results import LimitStateRating, Rating
+from ifccheck.rating.shares import Arising, Shares, arising
+from ifccheck.rating.subject import Subject
 from ifccheck.standards import CalculationLine
 from ifccheck.units import show, show_ratio
 
 Floats = npt.NDArray[np.float64]
 Ints = npt.NDArray[np.intp]
+
+NOTHING_DEMANDED = "nothing demanded"
+"""Outcome of a check that no combination asks anything of"""
 
 
 @dataclass(frozen=True, slots=True)
@@ -39,6 +55,33 @@ class SheetLine:
 
 
 @dataclass(frozen=True, slots=True)
+class CaseShare:
+    """The part that one case has in the demand at a place."""
+
+    case: str
+    nature: Nature
+    factor: float
+    """That the case takes in the combination; nan where it has no effect at the place"""
+    moment: float
+    """Unfactored [N*mm]"""
+    shear: float
+    """Unfactored [N]"""
+
+
+@dataclass(frozen=True, slots=True)
+class CaseReaction:
+    """What one case, unfactored, asks of the two supports."""
+
+    case: str
+    start: float
+    """Upward force on the beam [N]"""
+    end: float
+    start_moment: float
+    """Moment of the beam just inside [N*mm], sagging positive; 0 where it is pinned"""
+    end_moment: float
+
+
+@dataclass(frozen=True, slots=True)
 class SheetCheck:
     """The calculation of one limit state at its governing place."""
 
@@ -50,6 +93,8 @@ class SheetCheck:
     utilisation: float
     outcome: str
     """ "0.84: demand 157.2 kN, resistance 187.4 kN", or why it cannot be said"""
+    shares: tuple[CaseShare, ...] = ()
+    """How moment and shear at the place arise, case by case"""
 
 
 @dataclass(frozen=True, slots=True)
@@ -78,6 +123,7 @@ class Sheet:
     rating: Rating
     span: Span | None
     loads: tuple[Load, ...]
+    """With self weight"""
     bars: tuple[Bars, ...]
     """The reinforcement that was rated"""
     stirrups: tuple[Stirrups, ...]
@@ -86,6 +132,10 @@ class Sheet:
     section_x: float
     checks: tuple[SheetCheck, ...]
     diagrams: tuple[Diagram, ...]
+    reactions: tuple[CaseReaction, ...] = ()
+    bar_yield: tuple[Given, ...] = ()
+    """The yield strength that each entry of ``bars`` was rated with, where it was rated"""
+    stirrup_yield: tuple[Given, ...] = ()
 
 
 @dataclass(frozen=True, slots=True)
@@ -117,7 +167,7 @@ def sheet_lines(found: LineValues) -> tuple[SheetLine, ...]:
             text=line.text,
             formula=_worded(line.formula),
             numbers=_worded(_numbers_put_in(line.formula, found.values)),
-            result=_result(found.values[line.symbol], line.unit),
+            result=_line_result(found.values[line.symbol], line.unit),
             clause=line.clause,
         )
         for line in found.shown
@@ -156,6 +206,11 @@ def _number(value: float) -> str:
     return f"({text})" if value < 0.0 else text
 
 
+def _line_result(value: float, unit: str) -> str:
+    """A bound in some unit that is infinite binds nothing; a ratio that is, says so."""
+    return "not applied" if unit and math.isinf(value) else _result(value, unit)
+
+
 def _result(value: float, unit: str) -> str:
     if not math.isfinite(value):
         return "not known" if math.isnan(value) else "infinite"
@@ -179,31 +234,41 @@ def _result(value: float, unit: str) -> str:
 # From a rated batch to sheets ----------------------------------------------------------------
 
 
-def sheet_maker(batch: Batch, ratings: Sequence[Rating]) -> Callable[[int], Sheet]:
+def sheet_maker(
+    batch: Batch, ratings: Sequence[Rating], cases: Sequence[Case]
+) -> Callable[[int], Sheet]:
     """Return a function that makes the sheet of a row of the batch.
 
-    The details of every beam's governing places were worked out with the batch.
+    The details of every beam's governing places were worked out with the batch; what each case
+    does there is worked out here.
     """
     details = [found.shown.details for found in batch.states]
+    arisen = arising(batch, cases)
 
     def sheet(row: int) -> Sheet:
         subject, rating = batch.subjects[row], ratings[row]
         checks = tuple(
-            _check(found.state.lines, details[index], row, rating.limit_states[index])
+            _check(
+                found.state.lines, details[index], row, rating.limit_states[index],
+                _case_shares(arisen, arisen.shares[index], subject, row),
+            )
             for index, found in enumerate(batch.states)
-        )
+        )  # fmt: skip
         section_x = _section_x(batch, row, rating)
         return Sheet(
             beam=subject.beam,
             rating=rating,
             span=subject.span,
-            loads=subject.loads,
+            loads=(*_self_weight(arisen, subject, row), *subject.loads),
             bars=subject.bars,
             stirrups=subject.stirrups,
             section=_outline_at(subject.beam, section_x),
             section_x=section_x,
             checks=checks,
             diagrams=_diagrams(batch, row, rating),
+            reactions=_reactions(arisen, subject, row),
+            bar_yield=subject.bar_yield,
+            stirrup_yield=subject.stirrup_yield,
         )
 
     return sheet
@@ -215,15 +280,59 @@ def bare_sheet(beam: Beam, rating: Rating) -> Sheet:
     return Sheet(beam, rating, None, (), (), (), section, 0.0, (), ())
 
 
+def _acting(arisen: Arising, subject: Subject) -> Iterator[tuple[int, Case]]:
+    """The cases that load a beam, with their rows."""
+    loaded = {SELF, *(load.case for load in subject.loads)}
+    return ((k, case) for k, case in enumerate(arisen.cases) if case.name in loaded)
+
+
+def _case_shares(
+    arisen: Arising, shares: Shares, subject: Subject, row: int
+) -> tuple[CaseShare, ...]:
+    return tuple(
+        CaseShare(
+            case.name, case.nature, float(shares.factor[k, row]), float(shares.moment[k, row]),
+            float(shares.shear[k, row]),
+        )
+        for k, case in _acting(arisen, subject)
+    )  # fmt: skip
+
+
+def _reactions(arisen: Arising, subject: Subject, row: int) -> tuple[CaseReaction, ...]:
+    return tuple(
+        CaseReaction(
+            case.name, *arisen.reactions[k, row].tolist(), *arisen.end_moments[k, row].tolist()
+        )
+        for k, case in _acting(arisen, subject)
+    )
+
+
+def _self_weight(arisen: Arising, subject: Subject, row: int) -> Iterator[Load]:
+    """The weight of each stretch of one section, as the analysis took it."""
+    table = arisen.self_weight
+    weight = show(subject.unit_weight.value, "unit_weight").replace(".0 ", " ")
+    for i in np.flatnonzero(table.beam == row).tolist():
+        values = float(table.value_start[i]), float(table.value_end[i])
+        text = f"{show(values[0], 'line_load')} (self weight, {weight})"
+        yield Load(
+            subject.beam.key, SELF, "line", float(table.start[i]), float(table.end[i]), values,
+            origin=f"outline; {subject.unit_weight.source}", text=text,
+        )  # fmt: skip
+
+
 def _check(
-    lines: Sequence[CalculationLine], details: Any, row: int, found: LimitStateRating
+    lines: Sequence[CalculationLine],
+    details: Any,
+    row: int,
+    found: LimitStateRating,
+    shares: tuple[CaseShare, ...],
 ) -> SheetCheck:
+    title, clause, utilisation = found.title, found.clause, found.utilisation
     if not found.combination:
-        nothing = "nothing is demanded"
-        return SheetCheck(found.title, found.clause, "", (), found.utilisation, nothing)
+        return SheetCheck(title, clause, "", (), utilisation, NOTHING_DEMANDED)
     place = f"at x = {show(found.position, 'length')}, {found.combination}"
     printed = sheet_lines(values_at(lines, details, row))
-    return SheetCheck(found.title, found.clause, place, printed, found.utilisation, _outcome(found))
+    return SheetCheck(title, clause, place, printed, utilisation, _outcome(found), shares)
 
 
 def _outcome(found: LimitStateRating) -> str:
