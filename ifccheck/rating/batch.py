@@ -156,20 +156,18 @@ def rate_frame(
         (quick, quick.basis(prepared).take(elements.station)) for quick in standard.quick
     ]
     found = _found(standard, evaluations, elements)
+    factors = factor_array(combinations, cases)
     return Batch(
         subjects=tuple(subjects),
         stations=stations,
         first=stations.first_rows(len(subjects)),
         prepared=prepared,
         demand=acting.total,
-        states=tuple(
-            _evaluated(state, prepared, acting.total, utilisation, elements)
-            for state, (utilisation, _) in zip(standard.limit_states, found, strict=True)
-        ),
+        states=_states(standard, prepared, acting.total, found, elements),
         factors={
             cases[row].name: with_turns(
                 rating_factors(standard.limit_states, evaluations, elements, share, stations.x),
-                Growth(frame, effects, row, factor_array(combinations, cases)),
+                Growth(frame, effects, row, factors),
                 standard,
                 options,
             )
@@ -180,6 +178,19 @@ def rate_frame(
         uplift=uplift_of(effects, frame.spans),
         notes=standard.notes(prepared),
         basis=standard.basis(prepared),
+    )
+
+
+def _states(
+    standard: Standard,
+    prepared: Any,
+    demand: Demand,
+    found: Sequence[tuple[Floats, Floats]],
+    elements: Elements,
+) -> tuple[Evaluated, ...]:
+    return tuple(
+        _evaluated(state, prepared, demand, utilisation, elements)
+        for state, (utilisation, _) in zip(standard.limit_states, found, strict=True)
     )
 
 
