@@ -269,6 +269,10 @@ class Member:
     name: str
     storey: str
     box: Box
+    plan: Ring = ()
+    """Outer ring in plan [mm] of a body that stands upright and does not fill its box"""
+    doubt: str = ""
+    """Why it cannot be counted on to carry a beam; empty where it can"""
 
 
 @dataclass(frozen=True, slots=True)
@@ -350,6 +354,15 @@ class Contact:
     end: float
     place: Literal["start", "end", "between"]
     side: Literal["below", "above", "side", "end"]
+    """``end``: the end of the beam meets the other's face, or is built into it"""
+    other_step: int = 0
+    """Step id of the other member"""
+    beyond: float = 0.0
+    """How far the other reaches past the beam's end, along its axis [mm]; 0 between"""
+    bears: bool = True
+    """Whether it is near enough, and of a kind, to hold a beam; else it may only load it"""
+    doubt: str = ""
+    """Why it cannot be counted on to hold an end; empty where it can"""
 
 
 @dataclass(frozen=True, slots=True)

@@ -33,9 +33,10 @@ from ifccheck.brief.statements import (
     span_reason,
     statements,
 )
-from ifccheck.brief.supports import resolve_supports
+from ifccheck.brief.supports import resolve_supports, stated_ends
 from ifccheck.detailing import choose_source, lay_out
-from ifccheck.frame.contacts import between_reactions, find_contacts, reactions_reason
+from ifccheck.frame.carrying import contacts_of, pressed_ends
+from ifccheck.frame.contacts import between_reactions, reactions_reason
 from ifccheck.frame.spans import single_span, support_faces
 from ifccheck.rating.subject import Subject, Unrated
 from ifccheck.standards import Standard
@@ -43,7 +44,6 @@ from ifccheck.units import show
 
 Row = TypeVar("Row", Load, Remark)
 
-_DIRECT_CLASSES = ("IfcColumn", "IfcWall", "IfcFooting", "IfcPile", "IfcBearing")
 _CRANE = "crane loads stand where the brief puts them: they are not moved, and carry no impact"
 _LAYOUT_AGGREGATE = 20.0
 _WEIGHT_OF_DENSITY = 9.80665e-9
@@ -98,7 +98,7 @@ class _Sources:
 def gather(model: Model, brief: Brief, matches: Matches, standard: Standard) -> Gathered:
     """Gather everything that the rating of each beam of a model rests on."""
     beams = {beam.key: beam for beam in model.beams}
-    contacts = find_contacts(model.beams, model.members)
+    contacts = contacts_of(model, stated_ends(brief, matches))
     supports, remarks = resolve_supports(brief, matches, beams, contacts)
     sources = _Sources(
         brief=brief,
@@ -167,7 +167,7 @@ def _one(
         beam=beam,
         line=line,
         faces=support_faces(line.spans[0]),
-        direct=_direct(sources.contacts.get(beam.key, ())),
+        direct=pressed_ends(sources.contacts.get(beam.key, ())),
         side_loaded=any(
             contact.place == "between" and contact.side == "side"
             for contact in sources.contacts.get(beam.key, ())
@@ -402,24 +402,13 @@ def _judge_loads(
         findings.remarks.append(Remark(beam.key, "demand", _CRANE, "assumption"))
     if line and not statement.loads_complete:
         span = line.spans[0]
+        faces = support_faces(span)
         resting = between_reactions(
             sources.contacts.get(beam.key, ()),
+            beam.length,
+            (faces[0], beam.length - faces[1]),
             free_start=span.start_support.kind == "free",
             free_end=span.end_support.kind == "free",
         )
         reason = reactions_reason(resting)
         findings.reasons += [reason] if reason else []
-
-
-def _direct(contacts: Sequence[Contact]) -> tuple[bool, bool]:
-    """Whether the reaction presses into each end, by what the end touches.
-
-    An end that touches nothing, or only the side of another beam, is taken as not compressed.
-    """
-    pressed = {
-        contact.place
-        for contact in contacts
-        if contact.side == "below"
-        or (contact.side != "above" and contact.other_class.startswith(_DIRECT_CLASSES))
-    }
-    return "start" in pressed, "end" in pressed

@@ -204,10 +204,14 @@ def _block(lines: _Lines, block: Block) -> str:
     shape = lines.prism(ring, axes, block.height)
     placement = lines.placement(block.at)
     guid = guid_of(f"block {block.name}")
-    made = lines.add(f"{block.kind}('{guid}',$,'{block.name}',$,$,{placement},{shape},$,$)")
+    rest = ",$" * _FURTHER.get(block.kind, 2)
+    made = lines.add(f"{block.kind}('{guid}',$,'{block.name}',$,$,{placement},{shape}{rest})")
     lines.made_of(block.material, made)
     return made
 
+
+_FURTHER = {"IFCELEMENTASSEMBLY": 3, "IFCSTAIRFLIGHT": 6}
+"""Attributes from the tag on, where a class has others than two."""
 
 _HEAD = """ISO-10303-21;
 HEADER;

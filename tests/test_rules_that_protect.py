@@ -125,6 +125,32 @@ RESTING: Mapping[str, str] = {
     "a column on top near an end": hall(
         Beam(), others=[Block("C-9", (1300.0, 0.0, 3600.0), (300, 300), 3000)]
     ),
+    "a column that reaches past the one below": hall(
+        Beam(), others=[Block("C-9", (350.0, 0.0, 3600.0), (700, 300), 3000)]
+    ),
+    "a beam into its side that reaches past the column": hall(
+        Beam(), Beam("R-1", at=(250.0, 150.0, 3100.0), along=(0.0, 1.0, 0.0), width=500.0,
+                     depth=500.0, length=4000.0, columns=False),
+    ),
+    "a beam 30 mm from its side": hall(
+        Beam(), Beam("R-1", at=(3000.0, 180.0, 3100.0), along=(0.0, 1.0, 0.0), depth=500.0,
+                     length=4000.0, columns=False),
+    ),
+    "a wall on top": hall(
+        Beam(), others=[Block("W-9", (3000.0, 0.0, 3600.0), (4000, 200), 3000, kind="IFCWALL")]
+    ),
+    "a proxy on top": hall(
+        Beam(), others=[Block("X-9", (3000.0, 0.0, 3600.0), (900, 200), 900,
+                              kind="IFCBUILDINGELEMENTPROXY")]
+    ),
+    "a stair flight on top": hall(
+        Beam(), others=[Block("S-9", (3000.0, 0.0, 3600.0), (900, 200), 900,
+                              kind="IFCSTAIRFLIGHT")]
+    ),
+    "an assembly on top": hall(
+        Beam(), others=[Block("A-9", (3000.0, 0.0, 3600.0), (900, 200), 900,
+                              kind="IFCELEMENTASSEMBLY")]
+    ),
     "a steel beam on top": hall(
         Beam(),
         Beam("R-1", at=(3000.0, -2000.0, 3600.0), along=(0.0, 1.0, 0.0), length=4000.0,
@@ -224,6 +250,93 @@ def test_an_end_on_which_something_merely_stands(tmp_path: Path) -> None:
     check_not_rated(rated(tmp_path, standing), "supports unknown: its end touches no member")
 
 
+def loose(mark: str, x: float, y: float = 0.0, *, turned: bool = False, **more: Any) -> Beam:
+    """A beam without columns that starts at (x, y), along X or Y."""
+    along = (0.0, 1.0, 0.0) if turned else (1.0, 0.0, 0.0)
+    return Beam(mark, at=(x, y, 3000.0), along=along, columns=False, **more)
+
+
+def post(name: str, x: float, y: float, kind: str = "IFCCOLUMN") -> Block:
+    """A column of 300 by 300 from the ground to 6 m."""
+    return Block(name, (x, y, 0.0), (300, 300), 6000, kind=kind)
+
+
+HANGING: Mapping[str, tuple[str, str]] = {
+    "two end to end": (
+        hall(loose("B-1", 0.0), loose("B-2", 6000.0),
+             others=[post("C-1", -150.0, 0.0), post("C-2", 12150.0, 0.0)]),
+        "meet end to end",
+    ),
+    "three end to end": (
+        hall(loose("B-2", -6000.0), loose("B-1", 0.0), loose("B-3", 6000.0)), "meet end to end",
+    ),
+    "a ring of four": (
+        hall(loose("B-1", 0.0), loose("B-2", 6150.0, -150.0, turned=True, length=6150.0),
+             loose("B-3", 150.0, 6150.0, length=6150.0),
+             loose("B-4", 0.0, 150.0, turned=True, length=6150.0)),
+        "touches no member",
+    ),
+    "girders that nothing carries": (
+        hall(loose("B-1", 0.0), loose("G-1", -150.0, -3000.0, turned=True),
+             loose("G-2", 6150.0, -3000.0, turned=True)),
+        "nothing shows that it is carried",
+    ),
+    "columns beside its ends": (
+        hall(loose("B-1", 0.0), others=[post("C-1", 150.0, 300.0), post("C-2", 5850.0, 300.0)]),
+        "touches no member",
+    ),
+    "posts of which no one knows what they are": (
+        hall(loose("B-1", 0.0), others=[post("P-1", -150.0, 0.0, "IFCBUILDINGELEMENTPROXY"),
+                                        post("P-2", 6150.0, 0.0, "IFCBUILDINGELEMENTPROXY")]),
+        "touches no member",
+    ),
+    "walls of insulation": (
+        hall(loose("B-1", 0.0), others=[post("Insulation", -150.0, 0.0, "IFCWALL"),
+                                        post("Insulation 2", 6150.0, 0.0, "IFCWALL")]),
+        "insulation",
+    ),
+}  # fmt: skip
+
+
+@pytest.mark.parametrize("kind", HANGING)
+def test_a_beam_that_nothing_holds_up(tmp_path: Path, kind: str) -> None:
+    """The brief's default needs a way down to the ground; its entries are the engineer's word."""
+    model, why = HANGING[kind]
+    rating = rated(tmp_path, model)
+    check_not_rated(rating, "supports unknown: ")
+    check_not_rated(rating, why)
+    pinned = stated("supports", 'start = "pinned"\nend = "pinned"', beams="*")
+    complete = stated("beams", "loads_complete = true", beams="*")
+    check_adequate(rated(tmp_path, model, LOAD, pinned, complete))
+
+
+FACING = [post("C-1", -150.0, 0.0), post("C-2", 6150.0, 0.0)]
+
+
+def test_columns_face_to_face_and_girders_on_columns_hold_it(tmp_path: Path) -> None:
+    check_adequate(rated(tmp_path, hall(loose("B-1", 0.0), others=FACING)))
+    girders = [
+        loose("G-1", -150.0, -3000.0, turned=True),
+        loose("G-2", 6150.0, -3000.0, turned=True),
+    ]
+    under = [post(f"C-{x}{y}", x, y) for x in (-150.0, 6150.0) for y in (-3150.0, 3150.0)]
+    model = hall(loose("B-1", 0.0), *girders, others=under)
+    check_adequate(rated(tmp_path, model, LOAD))
+    one_gone = hall(loose("B-1", 0.0), *girders, others=under[1:])
+    check_not_rated(rated(tmp_path, one_gone), "supports unknown: its start touches only")
+    said = stated("supports", 'start = "pinned"\nend = "pinned"', beams="G-1")
+    check_adequate(rated(tmp_path, one_gone, LOAD, said))
+
+
+def test_a_steel_girder_holds_it_where_columns_hold_the_girder(tmp_path: Path) -> None:
+    steel: Any = {"material": "Structural steel S355", "notation": None, "turned": True}
+    girders = [loose("G-1", -150.0, -3000.0, **steel), loose("G-2", 6150.0, -3000.0, **steel)]
+    under = [post(f"C-{x}{y}", x, y) for x in (-150.0, 6150.0) for y in (-3150.0, 3150.0)]
+    check_adequate(rated(tmp_path, hall(loose("B-1", 0.0), *girders, others=under)))
+    hanging = hall(loose("B-1", 0.0), *girders, others=under[1:])
+    check_not_rated(rated(tmp_path, hanging), "supports unknown")
+
+
 def test_ends_of_which_the_brief_does_not_speak(tmp_path: Path) -> None:
     silent = brief(defaults=changed(DEFAULTS, 'supports = ["pinned", "pinned"]\n', ""))
     check_not_rated(rated(tmp_path, SOUND, text=silent), "supports unknown")
@@ -263,7 +376,7 @@ def test_an_end_that_frames_into_the_side_of_a_girder(tmp_path: Path) -> None:
     supply = {**NOTATION, "BottomBars": "5-25M", "Stirrups": "2 legs 10M @ 310"}
     beam = Beam(width=350.0, length=3600.0, notation=supply)
     girders = [
-        Beam(f"G-{n}", at=(x, -3000.0, 2900.0), along=(0.0, 1.0, 0.0), depth=700.0, columns=False)
+        Beam(f"G-{n}", at=(x, -3000.0, 2900.0), along=(0.0, 1.0, 0.0), depth=700.0)
         for n, x in enumerate((-150.0, 3750.0))
     ]
     loose = replace(beam, columns=False)

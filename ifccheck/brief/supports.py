@@ -45,9 +45,10 @@ def resolve_supports(
 ) -> tuple[dict[str, Supports | Reason], tuple[Remark, ...]]:
     """Return the supports of every beam, or why they are unknown, and the remarks.
 
-    The brief's default holds at an end that touches another member which does not merely
-    stand on it. An end that touches nothing needs its own entry; both ends do where something
-    touches the beam from below between them. Raises BriefError for a beam that cannot stand.
+    The brief's default holds at an end that sits on another member, or meets its face, where
+    nothing speaks against that member. Any other end needs its own entry; both ends do where
+    something touches the beam from below between them. Raises BriefError for a beam that cannot
+    stand.
     """
     stated, overruled = merge(brief.supports, matches, _say)
     supports: dict[str, Supports | Reason] = {}
@@ -57,6 +58,15 @@ def resolve_supports(
         supports[key] = _supports(brief, beam, said, touching)
         remarks += (*overruled.get(key, ()), *_remarks(key, supports[key], said))
     return supports, tuple(remarks)
+
+
+def stated_ends(brief: Brief, matches: Matches) -> dict[str, dict[End, SupportKind]]:
+    """How entries of the brief say that ends stand, by the key of the beam."""
+    stated, _ = merge(brief.supports, matches, _say)
+    ends: tuple[End, End] = ("start", "end")
+    return {
+        key: {end: said[end].value for end in ends if end in said} for key, said in stated.items()
+    }
 
 
 def _say(entry: SupportEntry) -> dict[str, Said]:
@@ -73,7 +83,7 @@ def _say(entry: SupportEntry) -> dict[str, Said]:
 def _supports(
     brief: Brief, beam: Beam, said: Mapping[str, Said], contacts: Sequence[Contact]
 ) -> Supports | Reason:
-    below = [c for c in contacts if c.place == "between" and c.side == "below"]
+    below = [c for c in contacts if c.place == "between" and c.side == "below" and c.bears]
     if below and not ("start" in said and "end" in said):
         return _touched_between(below[0])
     start = _end(brief, "start", said, contacts)
@@ -120,16 +130,25 @@ def _end(
     if end in said:
         kind, source = said[end].value, f"brief, {said[end].place}"
         return Support(kind, 0.0 if kind == "free" else bearing, source)
-    if not any(contact.place == end and contact.side != "above" for contact in contacts):
-        return Reason(
-            f"supports unknown: its {end} touches no member that could carry it, and no entry"
-            " of [[supports]] speaks of it"
-        )
+    if reason := _nothing_holds(end, [contact for contact in contacts if contact.place == end]):
+        return reason
     if brief.defaults.supports is None:
         return Reason(
             f"supports unknown: neither [[supports]] nor defaults.supports speaks of its {end}"
         )
     return Support(brief.defaults.supports[0 if end == "start" else 1], bearing, DEFAULT)
+
+
+def _nothing_holds(end: End, touching: Sequence[Contact]) -> Reason | None:
+    """Why none of what touches an end can be counted on to hold it; None where one can."""
+    seats = [c for c in touching if c.bears and c.side in ("below", "end")]
+    if any(not contact.doubt for contact in seats):
+        return None
+    unsure = "; ".join(sorted({f"{contact.other}: {contact.doubt}" for contact in seats}))
+    found = f"only what may not carry it ({unsure})" if unsure else "no member that could carry it"
+    return Reason(
+        f"supports unknown: its {end} touches {found}, and no entry of [[supports]] speaks of it"
+    )
 
 
 DEFAULT = "brief, defaults.supports"

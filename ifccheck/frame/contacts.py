@@ -1,14 +1,16 @@
 """Which members touch a beam, where along it, and whether they bear, stand or frame into it.
 
 Members that can hold a beam or be held by it make contacts: beams, columns, members, walls,
-footings, piles and bearings, and proxies at a beam's ends. Slabs, plates, coverings, roofs and
-stairs make none: their box covers a whole floor and so tells nothing of where they bear, and
-their weight is the engineer's to state as a load. Bars and parts never do.
+footings, piles and bearings; what can only load it does too: proxies, stairs, ramps and
+assemblies. Slabs, plates, coverings and roofs make none: their box covers a whole floor and so
+tells nothing of where they bear, and their weight is the engineer's to state as a load. Bars
+and parts never do.
 """
 
 from __future__ import annotations
 
-from collections.abc import Mapping, Sequence
+import math
+from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass
 from typing import Literal
 
@@ -25,21 +27,32 @@ from ifccheck.frame.boxes import (
     near_pairs,
     overlaps,
 )
+from ifccheck.frame.plans import within_plan
+from ifccheck.units import show
 
 TOLERANCE = 10.0
-"""Members with a gap of up to this touch [mm]."""
+"""Members with a gap of up to this touch, so that one may hold the other [mm]."""
+
+NEAR = 50.0
+"""Members with a gap of up to this may load each other: models leave joints open [mm]."""
 
 FRAMING = ("IfcBeam", "IfcColumn", "IfcMember")
 """Members that bring the reaction of others."""
 
 UPRIGHT = (
-    "IfcColumn", "IfcWall", "IfcFooting", "IfcPile", "IfcCaissonFoundation", "IfcBearing",
+    "IfcColumn", "IfcWall", "IfcFooting", "IfcPile", "IfcDeepFoundation", "IfcCaissonFoundation",
+    "IfcBearing",
 )  # fmt: skip
 """Members that stand and do not span."""
 
 TOUCHING = (*FRAMING, *UPRIGHT)
 
 PROXY = "IfcBuildingElementProxy"
+
+RESTING = (
+    PROXY, "IfcElementAssembly", "IfcStair", "IfcStairFlight", "IfcRamp", "IfcRampFlight",
+)  # fmt: skip
+"""Members that may rest on a beam and are no support."""
 
 END_DEPTHS = 1.5
 """An end contact covers at most so many depths of the beam ..."""
@@ -49,10 +62,24 @@ END_PART = 1.0 / 8.0
 of an even load is 44 % of that at midspan, so that what reaches further bears on the span
 itself. It never reaches past the middle."""
 
+LONG_WALL = 1000.0
+"""A wall that stands along so much of a beam loads it as a line [mm]."""
+
+_STEEP = math.sqrt(0.5)
 _NAMED = 3
 
 _Place = Literal["start", "end", "between"]
 _Side = Literal["below", "above", "side", "end"]
+
+
+@dataclass(frozen=True, slots=True)
+class _Spanning:
+    """What spans: the beams, or other members, that contacts are sought of (B)."""
+
+    keys: Sequence[str]
+    steps: Ints
+    boxes: Boxes
+    """x along the span, z up"""
 
 
 @dataclass(frozen=True, slots=True)
@@ -70,10 +97,14 @@ class _Touches:
     """The other lies wholly within the beam's box (P)"""
     upright: Bools
     """The other is of a kind that stands on the ground, not one that spans (P)"""
+    reach: Floats
+    """Least and greatest place of the other along the beam's x, from its middle [mm] (P, 2)"""
+    tolerance: float
+    """Gap up to which they touch [mm]"""
 
 
 def find_contacts(
-    beams: Sequence[Beam], members: Sequence[Member], tolerance: float = TOLERANCE
+    beams: Sequence[Beam], members: Sequence[Member]
 ) -> Mapping[str, tuple[Contact, ...]]:
     """Contacts of every beam, by its key and in the order of their place along it.
 
@@ -82,8 +113,9 @@ def find_contacts(
     between the ends as well. What runs alongside the beam or stands on it over such a length
     is no end contact, and neither is what lies wholly within the beam's box: they cannot hold
     its end. A column, wall or foundation that the beam passes into is below it where it reaches
-    under the soffit, even if it is drawn up to the beam's top or beyond. A beam whose body
-    could not be read has no contacts.
+    under the soffit, even if it is drawn up to the beam's top or beyond; one that does not
+    stands on it. What only comes near (a gap of up to NEAR) may load the beam and holds
+    nothing. A beam whose body could not be read has no contacts.
 
     Parameters
     ----------
@@ -91,45 +123,120 @@ def find_contacts(
         Beams of one model.
     members
         Members of that model, the beams themselves included.
-    tolerance
-        Greatest gap between two members that touch [mm].
     """
     solid = [beam for beam in beams if beam.axis is not None and beam.runs]
-    bearing = [member for member in members if _class_of(member) in (*TOUCHING, PROXY)]
-    touches = _find_touches(solid, bearing, tolerance)
-    found: dict[str, list[Contact]] = {beam.key: [] for beam in beams}
-    for contact in _contacts(solid, bearing, touches, tolerance):
-        found[contact.beam].append(contact)
+    steps = np.array([beam.step_id for beam in solid], np.int64)
+    spanning = _Spanning([beam.key for beam in solid], steps, beam_boxes(solid))
+    return {beam.key: () for beam in beams} | _contacts_of(spanning, members)
+
+
+def contacts_of_others(
+    beams: Sequence[Beam], members: Sequence[Member]
+) -> Mapping[str, tuple[Contact, ...]]:
+    """Contacts of what spans as a beam does and is not among the beams whose body was read.
+
+    By the key of a beam in scope, else by "#" and the step id.
+    """
+    solid = {beam.step_id for beam in beams if beam.axis is not None and beam.runs}
+    keys = {beam.step_id: beam.key for beam in beams}
+    lying = [m for m in members if m.step_id not in solid and _spans(m)]
+    spanning = _Spanning(
+        [keys.get(member.step_id, f"#{member.step_id}") for member in lying],
+        np.array([member.step_id for member in lying], np.int64),
+        _along_spans(member_boxes(lying)),
+    )
+    return _contacts_of(spanning, members)
+
+
+def _spans(member: Member) -> bool:
+    """Whether it is a beam by its class, and longest along what is nearer level than upright."""
+    if _class_of(member) not in ("IfcBeam", "IfcMember"):
+        return False
+    longest = max(range(3), key=lambda row: member.box.half[row])
+    return abs(member.box.axes[longest][2]) < _STEEP
+
+
+def _along_spans(boxes: Boxes) -> Boxes:
+    """The same boxes with their longest axis as x, and of the rest the more upright one as z."""
+    rows = np.arange(len(boxes.half))
+    along = boxes.half.argmax(axis=1) if rows.size else rows
+    steep = np.abs(boxes.axes[:, :, 2])
+    steep[rows, along] = -1.0
+    up = steep.argmax(axis=1) if rows.size else rows
+    order = np.stack([along, 3 - along - up, up], axis=1)
+    axes, half = boxes.axes[rows[:, None], order], boxes.half[rows[:, None], order]
+    axes[:, 2] *= np.where(axes[:, 2, 2] < 0.0, -1.0, 1.0)[:, None]
+    return Boxes(boxes.centre, axes, half)
+
+
+def _contacts_of(spanning: _Spanning, members: Sequence[Member]) -> dict[str, tuple[Contact, ...]]:
+    others = [member for member in members if _class_of(member) in (*TOUCHING, *RESTING)]
+    found: dict[str, list[Contact]] = {key: [] for key in spanning.keys}
+    for touches in _find_touches(spanning, others):
+        for contact in _contacts(spanning, others, touches):
+            found[contact.beam].append(contact)
     return {key: tuple(sorted(contacts, key=_order)) for key, contacts in found.items()}
 
 
 def _class_of(member: Member) -> str:
+    return _kind(member.ifc_class)
+
+
+def _kind(ifc_class: str) -> str:
     """The class without the suffix of its restricted kinds."""
-    return member.ifc_class.removesuffix("StandardCase").removesuffix("ElementedCase")
+    return ifc_class.removesuffix("StandardCase").removesuffix("ElementedCase")
 
 
 def _order(contact: Contact) -> tuple[float, float, str, str]:
     return contact.start, contact.end, contact.other, contact.place
 
 
-def _find_touches(beams: Sequence[Beam], members: Sequence[Member], tolerance: float) -> _Touches:
-    own, others = beam_boxes(beams), member_boxes(members)
-    grown = own.grown(tolerance)
-    beam, other = near_pairs(grown, others)
-    foreign = ~_is_itself(beams, members, beam, other)
+def _find_touches(spanning: _Spanning, members: Sequence[Member]) -> tuple[_Touches, _Touches]:
+    """Pairs that touch, and those that only come near."""
+    others = member_boxes(members)
+    steps = np.array([member.step_id for member in members], np.int64)
+    beam, other = near_pairs(spanning.boxes.grown(NEAR), others)
+    foreign = spanning.steps[beam] != steps[other]
     beam, other = beam[foreign], other[foreign]
-    covered = overlaps(grown.take(beam), others.take(other))
-    touching = np.flatnonzero(~np.isnan(covered[:, 0, 0]))
-    beam, other = beam[touching], other[touching]
-    within = _within(grown.take(beam), others.take(other))
+    touching, rest = _touches(spanning.boxes, others, members, (beam, other), TOLERANCE)
+    near, _ = _touches(spanning.boxes, others, members, rest, NEAR)
+    return touching, near
+
+
+def _touches(
+    own: Boxes,
+    others: Boxes,
+    members: Sequence[Member],
+    pairs: tuple[Ints, Ints],
+    tolerance: float,
+) -> tuple[_Touches, tuple[Ints, Ints]]:
+    """Those of the pairs that touch, and the other pairs."""
+    grown = own.grown(tolerance)
+    covered = overlaps(grown.take(pairs[0]), others.take(pairs[1]))
+    within_plan(covered, grown, members, pairs)
+    apart = np.isnan(covered[:, 0, 0])
+    beam, other = pairs[0][~apart], pairs[1][~apart]
     upright = np.array([_class_of(member) in UPRIGHT for member in members], np.bool_)
-    return _Touches(beam, other, covered[touching], own.half[beam], within, upright[other])
+    inner = others.take(other)
+    touching = _Touches(
+        beam,
+        other,
+        covered[~apart],
+        own.half[beam],
+        _within(own.grown(TOLERANCE).take(beam), inner),
+        upright[other],
+        _reach(own.take(beam), inner),
+        tolerance,
+    )
+    return touching, (pairs[0][apart], pairs[1][apart])
 
 
-def _is_itself(beams: Sequence[Beam], members: Sequence[Member], beam: Ints, other: Ints) -> Bools:
-    ids = np.array([b.step_id for b in beams], np.int64)
-    member_ids = np.array([m.step_id for m in members], np.int64)
-    return np.asarray(ids[beam] == member_ids[other])
+def _reach(own: Boxes, others: Boxes) -> Floats:
+    """What each other box covers along the x of its beam, from the beam's middle (P, 2)."""
+    x = own.axes[:, 0]
+    middle = np.einsum("pd,pd->p", others.centre - own.centre, x)
+    half = np.einsum("pk,pk->p", others.half, np.abs(np.einsum("pkd,pd->pk", others.axes, x)))
+    return np.stack([middle - half, middle + half], axis=-1)
 
 
 def _within(outer: Boxes, inner: Boxes) -> Bools:
@@ -140,44 +247,51 @@ def _within(outer: Boxes, inner: Boxes) -> Bools:
 
 
 def _contacts(
-    beams: Sequence[Beam], members: Sequence[Member], touches: _Touches, tolerance: float
-) -> list[Contact]:
-    below, above, beside = _sides(touches, tolerance)
-    places = _places(touches, above | beside, tolerance)
-    length = 2.0 * touches.half[:, 0]
-    start = np.clip(touches.covered[:, 0, 0] + touches.half[:, 0], 0.0, length)
-    end = np.clip(touches.covered[:, 0, 1] + touches.half[:, 0], 0.0, length)
-    contacts = []
-    for place, there in places.items():
+    spanning: _Spanning, members: Sequence[Member], touches: _Touches
+) -> Iterator[Contact]:
+    below, above, beside = _sides(touches)
+    half_length = touches.half[:, 0]
+    length = 2.0 * half_length
+    start = np.clip(touches.covered[:, 0, 0] + half_length, 0.0, length)
+    end = np.clip(touches.covered[:, 0, 1] + half_length, 0.0, length)
+    beyond = {"start": -half_length - touches.reach[:, 0], "end": touches.reach[:, 1] - half_length}
+    for place, there in _places(touches, above | beside).items():
         for row in np.flatnonzero(there).tolist():
             member = members[touches.other[row]]
-            if _class_of(member) == PROXY and (place == "between" or touches.within[row]):
+            kind = _class_of(member)
+            if kind == PROXY and touches.within[row]:
                 continue
-            side = _side(place, bool(below[row]), bool(above[row]), bool(beside[row]))
-            contacts.append(
-                Contact(
-                    beam=beams[touches.beam[row]].key,
-                    other=f"{member.name or member.guid} ({member.ifc_class})",
-                    other_class=member.ifc_class,
-                    start=float(start[row]),
-                    end=float(end[row]),
-                    place=place,
-                    side=side,
-                )
+            yield Contact(
+                beam=spanning.keys[touches.beam[row]],
+                other=f"{member.name or member.guid} ({member.ifc_class})",
+                other_class=member.ifc_class,
+                start=float(start[row]),
+                end=float(end[row]),
+                place=place,
+                side=_side(place, bool(below[row]), bool(above[row]), bool(beside[row])),
+                other_step=member.step_id,
+                beyond=max(0.0, float(beyond[place][row])) if place != "between" else 0.0,
+                bears=touches.tolerance <= TOLERANCE and kind not in RESTING,
+                doubt=member.doubt,
             )
-    return contacts
 
 
-def _sides(touches: _Touches, tolerance: float) -> tuple[Bools, Bools, Bools]:
-    """Whether the other lies under the soffit, stands on the top, or lies beside the beam."""
-    y, z = touches.covered[:, 1], touches.covered[:, 2]
-    half_width, half_depth = touches.half[:, 1], touches.half[:, 2]
+def _sides(touches: _Touches) -> tuple[Bools, Bools, Bools]:
+    """Whether the other lies under the soffit, stands on the top, or lies beside the beam.
+
+    What lies under it but beyond its end, or beyond its faces, does not carry it: it is beside.
+    """
+    (x, y, z), tolerance = np.moveaxis(touches.covered, 1, 0), touches.tolerance
+    half_length, half_width, half_depth = touches.half.T
     lateral = (y[:, 0] >= half_width - tolerance) | (y[:, 1] <= -half_width + tolerance)
-    above = z[:, 0] >= half_depth - tolerance
+    past_end = (x[:, 0] >= half_length - tolerance) | (x[:, 1] <= -half_length + tolerance)
+    in_plan = ~lateral & ~past_end
     reaches_under = z[:, 0] <= -half_depth - tolerance / 2.0
     under = z[:, 1] <= -half_depth + tolerance
-    below = under | (touches.upright & reaches_under & ~lateral)
-    return below, above & ~below, lateral & ~below & ~above
+    below = in_plan & (under | (touches.upright & reaches_under))
+    planted = in_plan & touches.upright & ~reaches_under
+    above = ~below & (planted | (z[:, 0] >= half_depth - tolerance))
+    return below, above, (lateral | under) & ~below & ~above
 
 
 def _side(place: _Place, below: bool, above: bool, beside: bool) -> _Side:
@@ -188,9 +302,9 @@ def _side(place: _Place, below: bool, above: bool, beside: bool) -> _Side:
     return "side" if beside or place == "between" else "end"
 
 
-def _places(touches: _Touches, cannot_hold_long: Bools, tolerance: float) -> dict[_Place, Bools]:
+def _places(touches: _Touches, cannot_hold_long: Bools) -> dict[_Place, Bools]:
     """At which ends each touch is, and whether it is between them (P each)."""
-    x, half_length = touches.covered[:, 0], touches.half[:, 0]
+    x, half_length, tolerance = touches.covered[:, 0], touches.half[:, 0], touches.tolerance
     depth, length = 2.0 * touches.half[:, 2], 2.0 * half_length
     covered = np.minimum(x[:, 1], half_length) - np.maximum(x[:, 0], -half_length)
     limit = np.minimum(np.maximum(END_DEPTHS * depth, END_PART * length), half_length)
@@ -202,29 +316,78 @@ def _places(touches: _Touches, cannot_hold_long: Bools, tolerance: float) -> dic
 
 
 def between_reactions(
-    contacts: Sequence[Contact], *, free_start: bool = False, free_end: bool = False
+    contacts: Sequence[Contact],
+    length: float = math.inf,
+    bearings: tuple[float, float] = (0.0, 0.0),
+    *,
+    free_start: bool = False,
+    free_end: bool = False,
 ) -> tuple[Contact, ...]:
     """Contacts that may bring the reaction of another member to a beam between its supports.
 
-    Those are beams, columns and members, but no columns under it, and at a free end any of
-    them: what touches the tip of a cantilever hangs on it, and so may a beam under its soffit.
+    Those are beams, columns, members, proxies, stairs, ramps and assemblies, and walls that
+    stand on it, but no columns under it; at an end also what reaches further in than that which
+    holds the end, and at a free end any of them: what touches the tip of a cantilever hangs on
+    it, and so may a beam under its soffit.
+
+    Parameters
+    ----------
+    contacts
+        Of one beam.
+    length
+        Of the beam [mm].
+    bearings
+        How far the bearings that the brief states reach in from either end [mm].
     """
+    held = _held_stretches(contacts, length, bearings)
     tips = {"start"} if free_start else set()
     tips |= {"end"} if free_end else set()
-    found = []
+    return tuple(c for c in contacts if _may_rest(c) and _loads_span(c, tips, held, length))
+
+
+def _may_rest(contact: Contact) -> bool:
+    kind = _kind(contact.other_class)
+    return kind in FRAMING or kind in RESTING or (kind == "IfcWall" and contact.side == "above")
+
+
+def _loads_span(contact: Contact, tips: set[str], held: Mapping[str, float], length: float) -> bool:
+    if contact.place in tips:
+        return True
+    if contact.place == "between":
+        return contact.side != "below" or _kind(contact.other_class) not in UPRIGHT
+    reach = contact.end if contact.place == "start" else length - contact.start
+    return contact.side in ("above", "side") and reach > held[contact.place] + TOLERANCE
+
+
+def _held_stretches(
+    contacts: Sequence[Contact], length: float, bearings: tuple[float, float]
+) -> dict[str, float]:
+    """How far in from either end the beam lies on what holds it [mm]."""
+    held = dict(zip(("start", "end"), bearings, strict=True))
     for contact in contacts:
-        kind = contact.other_class.removesuffix("StandardCase")
-        hangs = contact.side != "below" or kind not in UPRIGHT
-        if kind in FRAMING and (contact.place in tips or (contact.place == "between" and hangs)):
-            found.append(contact)
-    return tuple(found)
+        if contact.place != "between" and is_seat(contact) and not contact.doubt:
+            reach = contact.end if contact.place == "start" else length - contact.start
+            held[contact.place] = max(held[contact.place], reach)
+    return held
+
+
+def is_seat(contact: Contact) -> bool:
+    """Whether the other lies so that it can hold the end of the beam that it touches."""
+    return contact.bears and contact.place != "between" and contact.side in ("below", "end")
 
 
 def reactions_reason(contacts: Sequence[Contact]) -> Reason | None:
     """Why a beam with such contacts is not rated; None without any."""
-    others = sorted({contact.other for contact in contacts})
+    others = sorted({_told(contact) for contact in contacts})
     if not others:
         return None
     named = ", ".join(others[:_NAMED])
     rest = f" and {len(others) - _NAMED} more" if len(others) > _NAMED else ""
     return Reason(f"reactions not included: {named}{rest}", blocking=False)
+
+
+def _told(contact: Contact) -> str:
+    along = contact.end - contact.start
+    if _kind(contact.other_class) == "IfcWall" and along >= LONG_WALL:
+        return f"{contact.other}, which stands along {show(along, 'length')} of it"
+    return contact.other

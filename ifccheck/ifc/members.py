@@ -13,21 +13,26 @@ from ifccheck.ifc.entity import (
     GLOBAL_ID,
     ILL_TYPED,
     NAME,
+    OBJECT_TYPE,
     TAG,
     Entity,
     UnreadableError,
     text_at,
 )
 from ifccheck.ifc.storeys import Storeys
+from ifccheck.ifc.vocabulary import CONCRETE, families_named
 
 CLASSES = (
     "IfcBeam", "IfcColumn", "IfcWall", "IfcSlab", "IfcFooting", "IfcPile", "IfcMember", "IfcPlate",
     "IfcRoof", "IfcStair", "IfcStairFlight", "IfcRamp", "IfcRampFlight", "IfcBearing",
     "IfcDeepFoundation", "IfcCaissonFoundation", "IfcChimney", "IfcBuildingElementPart",
-    "IfcBuildingElementProxy",
+    "IfcBuildingElementProxy", "IfcElementAssembly",
 )  # fmt: skip
 """What may carry a beam or rest on it; a class that a schema lacks is passed over."""
 
+
+WEAK = ("insulation", "plastic")
+"""What no member that carries a beam is made of."""
 
 NOT_SOLID = (
     "IfcReinforcingElement", "IfcFastener", "IfcMechanicalFastener", "IfcDiscreteAccessory",
@@ -65,10 +70,19 @@ def read_members(
                 name=text_at(entity, NAME) or text_at(entity, TAG),
                 storey=storeys.name_of(step_id),
                 box=box,
+                doubt=_use_doubt(entity),
             )
             for box in found
         ]
     return Members(tuple(members), _unread(unread))
+
+
+def _use_doubt(entity: Entity) -> str:
+    """Say that a member is named as what carries nothing."""
+    names = (text_at(entity, NAME), text_at(entity, OBJECT_TYPE))
+    families = {family for name in names for family in families_named(name)}
+    weak = families & set(WEAK)
+    return f"it is named as {min(weak)}" if weak and CONCRETE not in families else ""
 
 
 def _boxes(context: Context, boxes: Boxes, entity: Entity, known: Box | None) -> list[Box]:
@@ -76,6 +90,8 @@ def _boxes(context: Context, boxes: Boxes, entity: Entity, known: Box | None) ->
     own = known or boxes.of(entity)
     if own is not None:
         return [own]
+    if entity.is_a("IfcElementAssembly"):
+        return []  # its parts are members by themselves
     parts = map(context.file.by_id, context.relations.descendants(entity.id()))
     found = [boxes.of(part) for part in parts if _is_solid_part(part)]
     return [box for box in found if box is not None]

@@ -1,0 +1,194 @@
+"""Which beams are carried: from the ground up, so that none holds itself up by another.
+
+An end is held by what the brief states of it, by a member that stands, or by a beam that is
+itself carried. Beams that only lean on each other are carried by none.
+"""
+
+from __future__ import annotations
+
+from collections import defaultdict
+from collections.abc import Iterable, Mapping, Sequence
+from dataclasses import dataclass, replace
+from typing import Literal
+
+from ifccheck.beam import Beam, Contact, Model, OutOfScope, SupportKind
+from ifccheck.frame.contacts import contacts_of_others, find_contacts, is_seat
+
+End = Literal["start", "end"]
+ENDS: tuple[End, End] = ("start", "end")
+
+STANDING_USES = ("footing", "bearing")
+"""Beams left out of scope for these uses stand on the ground."""
+
+SPANNING_MATERIALS = ("steel", "timber", "aluminium")
+"""Beams left out of scope for these materials carry others where they are carried."""
+
+END_TO_END = "the two meet end to end, and neither can hold the other"
+NOT_CARRIED = "nothing shows that it is carried at both of its own ends"
+
+Stated = Mapping[str, Mapping[End, SupportKind]]
+"""How the brief's entries say that ends of beams stand, by the key of the beam."""
+
+
+DIRECT_CLASSES = ("IfcColumn", "IfcWall", "IfcFooting", "IfcPile", "IfcBearing")
+"""What presses back over the depth of an end that meets its face."""
+
+
+@dataclass(frozen=True, slots=True)
+class _Seat:
+    """A contact that may hold an end, and the beam that would carry it; None for the ground."""
+
+    contact: Contact
+    carrier: str | None
+
+
+def contacts_of(model: Model, stated: Stated) -> dict[str, tuple[Contact, ...]]:
+    """Contacts of every beam of a model, with a doubt on each that nothing shows to carry it.
+
+    ``stated`` is what the brief's entries say of ends.
+    """
+    contacts = find_contacts(model.beams, model.members)
+    others = contacts_of_others(model.beams, model.members)
+    return carried_contacts(contacts, others, model.beams, model.out_of_scope, stated)
+
+
+def carried_contacts(
+    contacts: Mapping[str, Sequence[Contact]],
+    others: Mapping[str, Sequence[Contact]],
+    beams: Sequence[Beam],
+    out_of_scope: Sequence[OutOfScope],
+    stated: Stated,
+) -> dict[str, tuple[Contact, ...]]:
+    """The contacts of every beam, with a doubt on each that nothing shows to carry it.
+
+    Parameters
+    ----------
+    contacts
+        Of the beams, by key.
+    others
+        Of what else spans, by key, or by "#" and step id.
+    beams, out_of_scope
+        Of the same model.
+    stated
+        What the brief's entries say of ends.
+    """
+    everything = {**others, **contacts}
+    judged = _judged(everything, _keys(everything, beams), _left_out(out_of_scope), beams)
+    seats = {
+        key: [_Seat(*each) for each in own if is_seat(each[0]) and not each[0].doubt]
+        for key, own in judged.items()
+    }
+    carried = _carried(seats, stated)
+    return {
+        key: tuple(_with_doubt(contact, carrier, carried) for contact, carrier in judged[key])
+        for key in contacts
+    }
+
+
+def _with_doubt(contact: Contact, carrier: str | None, carried: set[str]) -> Contact:
+    if contact.doubt or carrier is None or carrier in carried or not is_seat(contact):
+        return contact
+    return replace(contact, doubt=NOT_CARRIED)
+
+
+def _keys(everything: Mapping[str, Sequence[Contact]], beams: Sequence[Beam]) -> dict[int, str]:
+    """The key of what spans, by step id."""
+    keys = {int(key[1:]): key for key in everything if key.startswith("#")}
+    return keys | {beam.step_id: beam.key for beam in beams}
+
+
+def _left_out(out_of_scope: Iterable[OutOfScope]) -> dict[int, str]:
+    return {each.step_id: each.reason for each in out_of_scope}
+
+
+def _judged(
+    everything: Mapping[str, Sequence[Contact]],
+    keys: Mapping[int, str],
+    left_out: Mapping[int, str],
+    beams: Sequence[Beam],
+) -> dict[str, list[tuple[Contact, str | None]]]:
+    """Every contact with the beam that would carry by it, and what speaks against it at once."""
+    steps = {key: step for step, key in keys.items()}
+    meeting = _ends_meeting(everything, steps)
+    judged: dict[str, list[tuple[Contact, str | None]]] = {}
+    for key, own in everything.items():
+        judged[key] = []
+        for contact in own:
+            reason = left_out.get(contact.other_step, "")
+            carrier = None if reason in STANDING_USES else keys.get(contact.other_step)
+            doubt = contact.doubt or _doubt(contact, steps[key], reason, meeting)
+            contact = contact if doubt == contact.doubt else replace(contact, doubt=doubt)
+            judged[key].append((contact, carrier))
+    return judged
+
+
+def _ends_meeting(
+    everything: Mapping[str, Sequence[Contact]], steps: Mapping[str, int]
+) -> set[tuple[int, int]]:
+    """Pairs (one, other) of steps of which the one meets the other with its end."""
+    return {
+        (steps[key], contact.other_step)
+        for key, own in everything.items()
+        for contact in own
+        if contact.place != "between" and contact.side == "end"
+    }
+
+
+def _doubt(contact: Contact, step: int, reason: str, meeting: set[tuple[int, int]]) -> str:
+    if reason and reason not in (*STANDING_USES, *SPANNING_MATERIALS):
+        return f"it is left out as {reason}"
+    if contact.side == "end" and (contact.other_step, step) in meeting and is_seat(contact):
+        return END_TO_END
+    return ""
+
+
+def _carried(seats: Mapping[str, Sequence[_Seat]], stated: Stated) -> set[str]:
+    """Keys of all that is carried, found from the ground up."""
+    held: dict[str, set[End]] = defaultdict(set)
+    resting: dict[str, list[tuple[str, End]]] = defaultdict(list)
+    for key, own in seats.items():
+        said = stated.get(key, {})
+        held[key] |= {end for end in ENDS if said.get(end, "free") != "free"}
+        for seat in own:
+            place = seat.contact.place
+            if place == "between" or said.get(place) == "free":
+                continue
+            if seat.carrier is None:
+                held[key].add(place)
+            else:
+                resting[seat.carrier].append((key, place))
+    carried: set[str] = set()
+    waiting = [key for key in seats if _stands(held[key], stated.get(key, {}))]
+    while waiting:
+        carrier = waiting.pop()
+        if carrier in carried:
+            continue
+        carried.add(carrier)
+        for key, end in resting[carrier]:
+            held[key].add(end)
+            if _stands(held[key], stated.get(key, {})):
+                waiting.append(key)
+    return carried
+
+
+def _stands(held: set[End], said: Mapping[End, SupportKind]) -> bool:
+    """Whether both ends are held, or the one fixed end of a cantilever is stated."""
+    if len(held) == len(ENDS):
+        return True
+    return set(said.values()) == {"fixed", "free"}
+
+
+def pressed_ends(contacts: Sequence[Contact]) -> tuple[bool, bool]:
+    """Whether the reaction presses into each end, by what the end touches.
+
+    An end that touches nothing, or meets the side of another beam, or what may not carry it,
+    is taken as not compressed.
+    """
+    pressed = {
+        contact.place
+        for contact in contacts
+        if is_seat(contact)
+        and not contact.doubt
+        and (contact.side == "below" or contact.other_class.startswith(DIRECT_CLASSES))
+    }
+    return "start" in pressed, "end" in pressed
