@@ -254,6 +254,29 @@ def test_wide_flange_counts_only_over_its_effective_width() -> None:
     np.testing.assert_allclose(prepared.sagging.web_width, 300.0)
 
 
+def test_bars_at_mid_depth_are_tension_steel_of_neither_face() -> None:
+    """Two bars at 300 of 600 mm alone carry no moment; 1 mm lower they are those of the soffit."""
+    rings = flanged(300, 600, 0, 0, 100)
+    outer = ((60.0, 1500.0, 25.2), (540.0, 600.0, 19.5))
+    sections = [
+        Given(rings, ((300.0, 1000.0, 25.2),)),
+        Given(rings, ((299.0, 1000.0, 25.2),)),
+        Given(rings, outer),
+        Given(rings, (*outer, (300.0, 1000.0, 25.2))),
+    ]
+    prepared = prepared_of(sections)
+    sagging, hogging = prepared.sagging, prepared.hogging
+    np.testing.assert_array_equal(sagging.tension_area, [0.0, 1000.0, 1500.0, 1500.0])
+    np.testing.assert_array_equal(hogging.tension_area, [0.0, 0.0, 600.0, 600.0])
+    np.testing.assert_array_equal(sagging.moment_resistance[:1], 0.0)
+    np.testing.assert_array_equal(hogging.moment_resistance[:2], 0.0)
+    np.testing.assert_allclose(sagging.effective_depth[2:], 540.0)
+    # by its strain it takes part in the moment all the same
+    assert sagging.moment_resistance[3] > sagging.moment_resistance[2]
+    moment, _ = fibre_strength(sections[3], True, rings)
+    assert sagging.moment_resistance[3] == pytest.approx(moment, rel=1e-3)
+
+
 @pytest.mark.parametrize(
     ("left", "right", "thickness", "span", "expected"),
     [
@@ -261,6 +284,9 @@ def test_wide_flange_counts_only_over_its_effective_width() -> None:
         (2000.0, 300.0, 150.0, 8000.0, (800.0, 300.0)),
         (2000.0, 0.0, 150.0, 30000.0, (900.0, 0.0)),
         (0.0, 2000.0, 150.0, 6000.0, (0.0, 500.0)),
+        (2000.0, 3.0, 150.0, 30000.0, (900.0, 3.0)),  # a ledge of 3 mm makes no T
+        (99.0, 2000.0, 150.0, 6000.0, (99.0, 500.0)),
+        (100.0, 2000.0, 150.0, 6000.0, (100.0, 600.0)),
         (0.0, 0.0, 0.0, 6000.0, (0.0, 0.0)),
     ],
 )

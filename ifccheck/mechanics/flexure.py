@@ -21,6 +21,9 @@ LAST_STEP = 1e-9
 NEGLIGIBLE_FORCE = 1e-6
 """Steel that can take no more than this [N] is none."""
 
+AT_MIDDLE = 1e-6
+"""A layer within this share of the depth from mid-depth is at it."""
+
 NEWTON_STEPS = 12
 """Steps after which every other step halves the bracket, so that the search must end."""
 
@@ -275,6 +278,8 @@ def _ratio(moment: Floats, force: Floats) -> Floats:
 def tension_side(layer_depth: Floats, layer_area: Floats, depth: Floats) -> Bools:
     """Layers with steel in the half of the depth on the tension side (n, L).
 
+    One at mid-depth is in neither half, so that it cannot serve both faces.
+
     Parameters
     ----------
     layer_depth, layer_area : arrays (n, L) [mm], [mm2]
@@ -282,7 +287,7 @@ def tension_side(layer_depth: Floats, layer_area: Floats, depth: Floats) -> Bool
     depth : array (n) [mm]
         Overall depth of the section.
     """
-    side: Bools = ~(layer_area <= 0.0) & (layer_depth >= depth[:, None] / 2)
+    side: Bools = ~(layer_area <= 0.0) & (layer_depth > depth[:, None] * (0.5 + AT_MIDDLE))
     return side
 
 

@@ -9,6 +9,7 @@ import numpy as np
 
 from ifccheck.mechanics.arrays import Bools, Floats, Ints
 from ifccheck.mechanics.flexure import (
+    AT_MIDDLE,
     FlexuralStrength,
     centroid_depth,
     flexural_strength,
@@ -300,8 +301,10 @@ def _strength(
     section: SectionState, strips: Floats, layer_depth: Floats, side: Bools
 ) -> FlexuralStrength:
     """Equilibrium with the factors of the standard and each bar's usable stress; none at all
-    where no tension steel is developed."""
-    usable = np.where(side, section.pulled, section.pushed) * section.bars.yield_strength
+    where no tension steel is developed. A layer at mid-depth may be pulled or pushed."""
+    middle = ~side & (layer_depth >= section.depth[:, None] * (0.5 - AT_MIDDLE))
+    pushed = np.where(middle, np.minimum(section.pulled, section.pushed), section.pushed)
+    usable = np.where(side, section.pulled, pushed) * section.bars.yield_strength
     held = (side & section.present).any(axis=1, keepdims=True)
     ratio = materials.block_stress_ratio(section.strength)
     return flexural_strength(

@@ -7,6 +7,9 @@ import numpy as np
 from ifccheck.mechanics.arrays import Floats
 from ifccheck.mechanics.width_profile import SLIVER, bottom_of, top_of
 
+LEAST_FLANGE = 0.05
+"""An overhang of less than this share of the one on the other side is no flange."""
+
 
 def effective_overhangs(
     *, left: Floats, right: Floats, thickness: Floats, span: Floats
@@ -14,7 +17,8 @@ def effective_overhangs(
     """Overhangs of a top flange that count in compression.
 
     flange on both sides: overhang <= min(span/10, 12 hf) each;
-    flange on one side: overhang <= min(span/12, 6 hf)
+    flange on one side: overhang <= min(span/12, 6 hf);
+    an overhang of less than a twentieth of the other is none
 
     Parameters
     ----------
@@ -30,9 +34,10 @@ def effective_overhangs(
     Notes
     -----
     The limit for continuous beams, a tenth of the span, is used for every beam; simply
-    supported ones may have a fifth. The limits are recalled. The outline itself is taken as
-    the T or L: slab that is modelled apart adds nothing, and the outline ends before half the
-    clear distance to the next web.
+    supported ones may have a fifth. The limits are recalled. That a mere ledge on the other side
+    makes no T of an L is our reading: the doubled limit is for slab on both sides. The outline
+    itself is taken as the T or L: slab that is modelled apart adds nothing, and the outline ends
+    before half the clear distance to the next web.
 
     Examples
     --------
@@ -48,7 +53,8 @@ def effective_overhangs(
     ----------
     CSA A23.3-14, 10.3.3 and 10.3.4
     """
-    both_sides = (left > 0.0) & (right > 0.0)
+    lesser, greater = np.minimum(left, right), np.maximum(left, right)
+    both_sides = (lesser > 0.0) & (lesser >= LEAST_FLANGE * greater)
     limit = np.where(
         both_sides,
         np.minimum(span / 10.0, 12.0 * thickness),
