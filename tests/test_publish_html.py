@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import base64
 import hashlib
+import math
 import re
 import zlib
 from dataclasses import replace
@@ -12,12 +13,15 @@ from itertools import pairwise
 
 import pytest
 
+from ifccheck.beam import Given, Reason, Remark
 from ifccheck.publish import tint
 from ifccheck.publish.html import render
 from ifccheck.publish.report import Report
 from ifccheck.publish.sheet_html import SEPARATOR, foot_line, packed, sheet_html
 from ifccheck.publish.typeset import formula_html, numbers_html
-from ifccheck.publish.words import CAUTIONS, plain, utilisation_words
+from ifccheck.publish.words import CAUTIONS, plain, reason_groups, utilisation_words
+from ifccheck.rating import Rating
+from ifccheck.sheet import NOTHING_DEMANDED, CaseReaction, CaseShare, SheetCheck
 from tests.reports_made_up import HOSTILE, hostile_report, made_up_report
 
 VOID = {"meta", "br", "col", "input", "path", "rect", "circle", "img", "hr", "link"}
@@ -214,6 +218,93 @@ def test_a_sheet_holds_the_whole_calculation() -> None:
     for remark in rating.remarks:
         assert remark.text in text
     assert "Not checked: torsion, deflection and crack width." in text
+
+
+def test_doubts_stand_before_the_figures_that_they_may_undermine() -> None:
+    rating = next(r for r in REPORT.ratings.values() if r.limit_states)
+    doubt = Remark(rating.beam, "read", "two bars lie outside the body", "doubt")
+    doubted = replace(rating, remarks=(*rating.remarks, doubt))
+    sheet = Seen(sheet_html(replace(REPORT.sheet(rating.beam), rating=doubted), "")).text
+    assert sheet.index(doubt.text) < sheet.index("Limit states")
+    assert sheet.count(doubt.text) == 1
+    of_run = Remark(None, "results", "results of an earlier run could not be taken away", "doubt")
+    ratings = {**REPORT.ratings, rating.beam: doubted}
+    page = Seen(render(replace(REPORT, ratings=ratings, remarks=(of_run,)))).text
+    assert page.index(of_run.text) < page.index("Rated cases over the whole model")
+    row = page[page.index("All beams") :]
+    assert doubt.text in row, "and in the table of beams"
+
+
+def test_a_sheet_tells_how_the_demand_arises() -> None:
+    """1.25 x 27.2 + 1.5 x 41 = 95.5 kN*m; a case without effect at the place has no factor."""
+    sheet = REPORT.sheet(next(r.beam for r in REPORT.ratings.values() if r.limit_states))
+    shares = (
+        CaseShare("self", "permanent", 1.25, 27.2e6, -3e3),
+        CaseShare("floor", "imposed", 1.5, 41.0e6, 5e3),
+        CaseShare("press", "imposed", math.nan, 0.0, 0.0),
+    )
+    reactions = (CaseReaction("self", 15.3e3, 15.4e3, 0.0, -8.1e6),)
+    checks = (replace(sheet.checks[0], shares=shares),)
+    text = Seen(sheet_html(replace(sheet, checks=checks, reactions=reactions), "")).text
+    rows = text[text.index("how moment and shear arise") :]
+    for words in (
+        "self permanent 27.2",
+        "1.25 34",
+        "floor imposed 41",
+        "1.5 61.5",
+        "together 95.5",
+    ):
+        assert words in rows
+    assert "press imposed 0 0 – 0 0" in rows
+    assert "self 15.3 15.4 -8.10" in rows
+    assert ", x = 0 m to " in text, "where the span begins"
+
+
+def test_the_yield_that_was_rated_is_in_the_table_of_reinforcement() -> None:
+    sheet = REPORT.sheet(next(r.beam for r in REPORT.ratings.values() if r.limit_states))
+    bars = tuple(replace(each, yield_strength=None) for each in sheet.bars)
+    rated = tuple(Given(431.0 + i, "brief", assumed=i == 0) for i in range(len(bars)))
+    text = Seen(sheet_html(replace(sheet, bars=bars, bar_yield=rated), "")).text
+    assert all(f"{given.value:.0f}" in text for given in rated)
+    assert "assumed 431" in text
+    assert "not known" not in text
+
+
+def test_a_check_of_which_nothing_is_demanded_has_no_table() -> None:
+    sheet = REPORT.sheet(next(r.beam for r in REPORT.ratings.values() if r.limit_states))
+    idle = SheetCheck("flexure, hogging", "10.1", "", (), 0.0, NOTHING_DEMANDED)
+    text = Seen(sheet_html(replace(sheet, checks=(sheet.checks[0], idle)), "")).text
+    assert "Nothing demanded in flexure, hogging." in text
+    assert "utilisation nothing" not in text
+
+
+def test_reasons_that_differ_by_the_members_named_are_one_row() -> None:
+    rating = next(iter(REPORT.ratings.values()))
+
+    def unrated(key: str, *texts: str) -> Rating:
+        return replace(rating, beam=key, reasons=tuple(map(Reason, texts)))
+
+    groups = reason_groups(
+        [
+            unrated("a", "reactions not included: C-H1 (IfcColumn)"),
+            unrated("b", "reactions not included: T-119 (IfcBeam)", "no load assigned"),
+            unrated("c", "shear: the aggregate size is not given"),
+            unrated("d", "shear: the legs of the stirrups are not stated (10M)"),
+            unrated("e", "supports unknown: its start touches nothing"),
+        ]
+    )
+    assert [(group.text, group.beams) for group in groups] == [
+        ("reactions not included (each sheet says more)", ("a", "b")),
+        ("no load assigned", ("b",)),
+        ("shear: the aggregate size is not given", ("c",)),
+        ("shear: the legs of the stirrups are not stated (10M)", ("d",)),
+        ("supports unknown: its start touches nothing", ("e",)),
+    ]
+    cures = [group.cure for group in groups]
+    assert "loads_complete = true" in cures[0]
+    assert "unloaded = true" in cures[1]
+    assert (cures[2], cures[3]) == ("", "")
+    assert "[[supports]]" in cures[4]
 
 
 def test_a_beam_that_is_not_rated_says_why_on_its_sheet() -> None:

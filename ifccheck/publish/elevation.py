@@ -6,7 +6,7 @@ from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
 from functools import cached_property
 
-from ifccheck.beam import Anchor, Bars, Load, Ring, Run, Span, Stirrups, Support
+from ifccheck.beam import SELF, Anchor, Bars, Load, Ring, Run, Span, Stirrups, Support
 from ifccheck.publish.quantities import typographic
 from ifccheck.publish.svg import (
     circle,
@@ -205,7 +205,8 @@ class _Loads:
     """The loads on one face, in bands from the beam outwards."""
 
     def __init__(self, loads: Sequence[Load], hung: bool) -> None:
-        self.lines = [load for load in loads if load.kind == "line"]
+        lines = [load for load in loads if load.kind == "line"]
+        self.lines = sorted(lines, key=lambda load: load.case == SELF)
         self.singles = [load for load in loads if load.kind != "line"]
         self.hung = hung
         self.rows = _rows(self.singles)

@@ -37,6 +37,7 @@ from ifccheck.publish.words import (
     CAUTIONS,
     covered_phrases,
     factor_words,
+    reason_groups,
 )
 
 WORST = 10
@@ -71,7 +72,8 @@ def render(report: Report) -> str:
         unrated=_unrated(report, rows),
         out_of_scope=_out_of_scope(report.model.out_of_scope),
         assumptions=[_assumption(a, report) for a in report.assumptions],
-        remarks=report.remarks,
+        doubts=[remark for remark in report.remarks if remark.kind == "doubt"],
+        remarks=[remark for remark in report.remarks if remark.kind != "doubt"],
         sources=_sources(report),
         combined=_combined(report.combinations),
         combinations=_combinations(report.combinations),
@@ -211,17 +213,17 @@ def _plans(report: Report, numbers: Mapping[str, int]) -> list[_Plan]:
 @dataclass(frozen=True, slots=True)
 class _Unrated:
     text: str
+    cure: str
     rows: list[Row]
 
 
 def _unrated(report: Report, rows: Sequence[Row]) -> list[_Unrated]:
     """Reasons, the most frequent first, each with all its beams."""
-    found: dict[str, list[Row]] = {}
-    for row in rows:
-        for reason in report.ratings[row.key].reasons:
-            found.setdefault(reason.text, []).append(row)
-    ordered = sorted(found.items(), key=lambda item: (-len(item[1]), item[0]))
-    return [_Unrated(text, its_rows) for text, its_rows in ordered]
+    by_key = {row.key: row for row in rows}
+    groups = reason_groups(report.ratings[row.key] for row in rows)
+    return [
+        _Unrated(group.text, group.cure, [by_key[key] for key in group.beams]) for group in groups
+    ]
 
 
 @dataclass(frozen=True, slots=True)

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Mapping
+from collections.abc import Iterable, Mapping
 from dataclasses import dataclass
 
 from ifccheck.beam import Beam
@@ -56,6 +56,8 @@ class Row:
     verdict: str
     phrase: str
     why: str
+    doubt: str
+    """The first remark that may undermine the verdict, and how many more there are"""
     band: str
     utilisation: str
     used: str
@@ -94,7 +96,8 @@ def _row(
         span=_span(beam, report),
         verdict=str(rating.verdict),
         phrase=verdict_phrase(rating),
-        why=_why(rating),
+        why=_first(reason.text for reason in rating.reasons),
+        doubt=_first(remark.text for remark in rating.remarks if remark.kind == "doubt"),
         band=band(rating),
         utilisation=_sortable(rating.utilisation),
         used=utilisation_words(rating.utilisation),
@@ -111,11 +114,9 @@ def _span(beam: Beam, report: Report) -> str:
     return _metres(span.end - span.start) if span else ""
 
 
-def _why(rating: Rating) -> str:
-    if not rating.reasons:
-        return ""
-    more = len(rating.reasons) - 1
-    return rating.reasons[0].text + (f" (and {more} more)" if more else "")
+def _first(texts: Iterable[str]) -> str:
+    first, *others = [*texts] or [""]
+    return first + (f" (and {len(others)} more)" if others else "")
 
 
 def _sortable(value: float) -> str:

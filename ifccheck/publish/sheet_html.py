@@ -8,11 +8,18 @@ import zlib
 from collections.abc import Callable, Iterable, Iterator
 from dataclasses import dataclass
 from functools import cache
-from itertools import islice
+from itertools import islice, zip_longest
 
 from markupsafe import Markup
 
-from ifccheck.beam import SELF, Anchor, Bars, Beam, Load, Span, Stirrups
+from ifccheck.beam import SELF, Anchor, Bars, Given, Load, Stirrups
+from ifccheck.publish.arising import (
+    ShareRow,
+    reaction_rows,
+    share_rows,
+    span_words,
+    support_words,
+)
 from ifccheck.publish.drawings import diagram, section
 from ifccheck.publish.elevation import bar_words, elevation, load_words, stirrup_words
 from ifccheck.publish.quantities import (
@@ -34,7 +41,7 @@ from ifccheck.publish.words import (
     verdict_phrase,
 )
 from ifccheck.rating import BasisItem, LimitStateRating, SafeLoad
-from ifccheck.sheet import Sheet, SheetCheck, SheetLine
+from ifccheck.sheet import NOTHING_DEMANDED, Sheet, SheetCheck, SheetLine
 
 SHEETS_PER_BLOCK = 8
 """Neighbouring sheets share most of their markup: together they deflate to half."""
@@ -61,16 +68,21 @@ def sheet_html(sheet: Sheet, foot: str) -> str:
         band=band(rating),
         phrase=verdict_phrase(rating),
         used="" if math.isnan(rating.utilisation) else utilisation_words(rating.utilisation),
-        facts=_facts(sheet.beam, sheet.span),
+        facts=_facts(sheet),
         elevation=Markup(elevation(sheet)),
         self_weight=any(load.case == SELF for load in sheet.loads) or not sheet.diagrams,
         diagrams=[Markup(diagram(drawn, length)) for drawn in sheet.diagrams],
         section=Markup(section(sheet)),
+        doubts=[remark for remark in rating.remarks if remark.kind == "doubt"],
+        remarks=[remark for remark in rating.remarks if remark.kind != "doubt"],
         states=[_state(state) for state in rating.limit_states],
         safe_loads=[_safe_load(safe) for safe in rating.safe_loads],
-        checks=[_check(check) for check in sheet.checks],
+        checks=[_check(check) for check in sheet.checks if check.outcome != NOTHING_DEMANDED],
+        idle=joined(check.title for check in sheet.checks if check.outcome == NOTHING_DEMANDED),
         loads=[_load(load) for load in sheet.loads],
-        steel=[*map(_bar_row, sheet.bars), *map(_stirrup_row, sheet.stirrups)],
+        reactions=(reactions := reaction_rows(sheet.reactions)),
+        held=any(row.start_moment or row.end_moment for row in reactions),
+        steel=_steel(sheet),
         basis=[_basis(item) for item in rating.basis],
         checked=joined(rating.checked),
         not_checked=joined(rating.not_checked),
@@ -98,7 +110,8 @@ def foot_line(report: Report) -> str:
     )
 
 
-def _facts(beam: Beam, span: Span | None) -> list[tuple[str, str]]:
+def _facts(sheet: Sheet) -> list[tuple[str, str]]:
+    beam, span = sheet.beam, sheet.span
     facts = [
         ("name", beam.name if beam.name != beam.mark else ""),
         ("tag", beam.tag if beam.tag != beam.mark else ""),
@@ -107,8 +120,8 @@ def _facts(beam: Beam, span: Span | None) -> list[tuple[str, str]]:
         ("section", section_words(beam)),
         ("material", beam.material),
         ("length", quantity_words(beam.length, "length") if beam.length else ""),
-        ("span", quantity_words(span.end - span.start, "length") if span else ""),
-        ("supports", f"{span.start_support.kind} – {span.end_support.kind}" if span else ""),
+        ("span", span_words(sheet)),
+        ("supports", support_words(span) if span else ""),
         ("GlobalId", beam.key),
     ]
     return [(name, value) for name, value in facts if value]
@@ -172,6 +185,7 @@ class _Check:
     title: str
     place: str
     clause: str
+    shares: list[ShareRow]
     lines: list[_Line]
     over: bool
     used: str
@@ -186,6 +200,7 @@ def _check(check: SheetCheck) -> _Check:
         title=check.title,
         place=check.place,
         clause=check.clause,
+        shares=share_rows(check.shares),
         lines=[_line(line) for line in check.lines],
         over=falls_short(check.utilisation),
         used=used,
@@ -239,8 +254,17 @@ class _Steel:
     origin: str
 
 
-def _bar_row(bars: Bars) -> _Steel:
-    steel = bars.yield_strength
+def _steel(sheet: Sheet) -> list[_Steel]:
+    """The steel with the yield that it was rated with, else with the one that was read."""
+    bars = zip_longest(sheet.bars, sheet.bar_yield[: len(sheet.bars)])
+    stirrups = zip_longest(sheet.stirrups, sheet.stirrup_yield[: len(sheet.stirrups)])
+    return [
+        *(_bar_row(each, rated or each.yield_strength) for each, rated in bars),
+        *(_stirrup_row(each, rated or each.yield_strength) for each, rated in stirrups),
+    ]
+
+
+def _bar_row(bars: Bars, steel: Given | None) -> _Steel:
     return _Steel(
         name=bar_words(bars),
         area=f"{bars.count * bars.area:.0f}",
@@ -261,8 +285,7 @@ def _ends(start: Anchor, end: Anchor) -> str:
     return f"{start} – {end}"
 
 
-def _stirrup_row(stirrups: Stirrups) -> _Steel:
-    steel = stirrups.yield_strength
+def _stirrup_row(stirrups: Stirrups, steel: Given | None) -> _Steel:
     legs = stirrups.legs
     return _Steel(
         name=stirrup_words(stirrups),

@@ -5,7 +5,8 @@ from __future__ import annotations
 import math
 import re
 from collections import Counter
-from collections.abc import Iterable
+from collections.abc import Iterable, Mapping, Sequence
+from dataclasses import dataclass
 
 from ifccheck.beam import Beam, Outline, Verdict
 from ifccheck.rating import Rating
@@ -106,3 +107,42 @@ def factor_words(factor: float) -> str:
     if math.isnan(factor):
         return "not rated"
     return "not limited" if math.isinf(factor) else show_ratio(factor)
+
+
+CURES = {
+    "reactions not included": "put what rests on them in the loads, then write loads_complete ="
+    " true under [[beams]]",
+    "no load assigned": "reach them with an entry of [[loads]], or write unloaded = true under"
+    " [[beams]]",
+    "supports unknown": "write an entry of [[supports]] that names them",
+}
+"""What lets a beam be rated, for reasons that the brief can settle; by the words before ":"."""
+
+
+@dataclass(frozen=True, slots=True)
+class ReasonGroup:
+    """Reasons that differ only by the members that they name."""
+
+    text: str
+    cure: str
+    beams: tuple[str, ...]
+    """Keys"""
+
+
+def reason_groups(ratings: Iterable[Rating]) -> list[ReasonGroup]:
+    """Return why beams are not rated, the most frequent first."""
+    found: dict[str, dict[str, list[str]]] = {}
+    for rating in ratings:
+        for reason in rating.reasons:
+            head = reason.text.partition(":")[0]
+            group = head if head in CURES else reason.text
+            found.setdefault(group, {}).setdefault(reason.text, []).append(rating.beam)
+    groups = [_reason_group(group, texts) for group, texts in found.items()]
+    return sorted(groups, key=lambda group: (-len(group.beams), group.text))
+
+
+def _reason_group(group: str, texts: Mapping[str, Sequence[str]]) -> ReasonGroup:
+    """One text stands as it is; of several, what differs is left to the sheets."""
+    text = next(iter(texts)) if len(texts) == 1 else f"{group} (each sheet says more)"
+    beams = tuple(dict.fromkeys(key for keys in texts.values() for key in keys))
+    return ReasonGroup(text, CURES.get(group, ""), beams)

@@ -1,0 +1,112 @@
+"""How a demand arises, as rows of words: the part of each case, and the reactions."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Sequence
+from dataclasses import dataclass
+
+from ifccheck.beam import Span
+from ifccheck.publish.quantities import number_and_unit, quantity_words
+from ifccheck.sheet import CaseReaction, CaseShare, Sheet
+
+
+@dataclass(frozen=True, slots=True)
+class ShareRow:
+    """The part of one case in moment [kN·m] and shear [kN] at a place."""
+
+    case: str
+    nature: str
+    factor: str
+    moment: str
+    shear: str
+    factored_moment: str
+    factored_shear: str
+
+
+@dataclass(frozen=True, slots=True)
+class ReactionRow:
+    """What one case, unfactored, asks of the supports: forces [kN] and moments [kN·m]."""
+
+    case: str
+    start: str
+    end: str
+    start_moment: str
+    end_moment: str
+
+
+def span_words(sheet: Sheet) -> str:
+    """Return the span, from where to where it reaches, and what says so."""
+    span = sheet.span
+    if span is None:
+        return ""
+    length = quantity_words(span.end - span.start, "length")
+    ends = " to ".join(quantity_words(place, "length") for place in (span.start, span.end))
+    source = next((item.source for item in sheet.rating.basis if item.name == "Span"), "")
+    return f"{length}, x = {ends}" + (f" ({source})" if source else "")
+
+
+def support_words(span: Span) -> str:
+    """Return how the two ends stand, and what says so."""
+    ends = (span.start_support, span.end_support)
+    if ends[0].source == ends[1].source:
+        return f"{ends[0].kind} – {ends[1].kind} ({ends[0].source})"
+    return " – ".join(f"{end.kind} ({end.source})" for end in ends)
+
+
+def share_rows(shares: Sequence[CaseShare]) -> list[ShareRow]:
+    """Return a row for each case, and their sum as the last row."""
+    if not shares:
+        return []
+    moment = sum(_factored(share.factor, share.moment) for share in shares)
+    shear = sum(_factored(share.factor, share.shear) for share in shares)
+    total = ShareRow("together", "", "", "", "", _moment(moment), _force(shear))
+    return [*map(_share_row, shares), total]
+
+
+def _share_row(share: CaseShare) -> ShareRow:
+    return ShareRow(
+        case=share.case,
+        nature=share.nature,
+        factor="–" if math.isnan(share.factor) else f"{share.factor:.4g}",
+        moment=_moment(share.moment),
+        shear=_force(share.shear),
+        factored_moment=_moment(_factored(share.factor, share.moment)),
+        factored_shear=_force(_factored(share.factor, share.shear)),
+    )
+
+
+def _factored(factor: float, effect: float) -> float:
+    """A case that has no effect at the place has no factor there."""
+    return 0.0 if math.isnan(factor) else factor * effect
+
+
+def reaction_rows(reactions: Sequence[CaseReaction]) -> list[ReactionRow]:
+    """Return a row for each case; moments only where a support holds one."""
+    held = [
+        any(abs(getattr(each, side)) >= 1.0 for each in reactions)
+        for side in ("start_moment", "end_moment")
+    ]
+    return [
+        ReactionRow(
+            each.case,
+            _force(each.start),
+            _force(each.end),
+            _moment(each.start_moment) if held[0] else "",
+            _moment(each.end_moment) if held[1] else "",
+        )
+        for each in reactions
+    ]
+
+
+def _moment(value: float) -> str:
+    return number_and_unit(_clean(value), "N*mm")[0]
+
+
+def _force(value: float) -> str:
+    return number_and_unit(_clean(value), "N")[0]
+
+
+def _clean(value: float) -> float:
+    """Nothing but what rounding leaves (below 1 N or 1 N*mm) is nothing."""
+    return 0.0 if abs(value) < 1.0 else value
