@@ -26,31 +26,31 @@ _NUMBER = r"\d+(?:[.,]\d+)*"
 _UNIT = (
     r"k\.?s\.?i|p\.?s\.?i|mpa|kpa|mn\s*/\s*m|n\s*/\s*mm|kgf?\s*/\s*cm|ksc|lbf?\s*/\s*in|n(?![a-z/])"
 )
+_APART = r"\s*(?:[-–—/&]|\.\.|,\s|to|or|and)\s*"
+_PRIME = "['’`′´]"
 _AGE = r"(?:[\s,(_@]*\d+(?:\s*-?\s*d(?:ays?)?(?![a-z])|(?=\s*\)?\s*[=:]))[\s)]*)?"
 """After f'c: the age of the specimens, "56d" or "28 =", not their strength."""
 _NO_AGE = r"(?!\d|[.,]\d|\s*-?\s*d(?:ays?)?(?![a-z]))"
-CUBE = re.compile(
-    rf"(?<![a-z])(?:fcu|rck|f[ck]{{1,2}},? ?cube){_AGE}[\s=:)]*({_NUMBER}){_NO_AGE}\s*({_UNIT})?",
-    re.I,
-)
-CYLINDER = re.compile(
-    rf"(?<![a-z])f['’`′]?c['’`′]?k?{_AGE}[\s=:)]*({_NUMBER}){_NO_AGE}\s*({_UNIT})?", re.I
-)
+_VALUES = rf"{_AGE}[\s=:)]*({_NUMBER}(?:(?:{_APART}|\s+){_NUMBER}){{0,20}}){_NO_AGE}\s*({_UNIT})?"
+"""One number or several; a first one without a word may be an age: all are looked at."""
+CUBE = re.compile(rf"(?<![a-z])(?:fcu|rck|f{_PRIME}?[ck]{{1,2}},? ?cube){_VALUES}", re.I)
+CYLINDER = re.compile(rf"(?<![a-z])f{_PRIME}?c{_PRIME}?k?{_VALUES}", re.I)
 TWO_STRENGTHS = re.compile(r"(?<![\d.,])(\d{2,3}) ?/ ?(\d{2,3})(?![\d.])")
 WITH_UNIT = re.compile(
-    rf"(?<![a-z\d.,])(?:({_NUMBER})\s*(?:[-–—/&]|\.\.|,\s|to|or|and)\s*)?({_NUMBER})[\s-]*({_UNIT})",
-    re.I,
+    rf"(?<![a-z\d.,])({_NUMBER}(?:{_APART}{_NUMBER}){{0,20}})[\s-]*({_UNIT})", re.I
 )
 SPANISH = re.compile(r"(?<![a-z])h[aplm]-? ?(\d{2,3})(?!\d)", re.I)
 AMBIGUOUS = re.compile(
-    r"(?<![a-z])(?:[bckm]|lc|rcc?|gr(?:ade)?\.?)[ _]?-?(\d{2})(?![\d/]|[.,]\d|\s*[x×])", re.I
+    rf"(?<![a-z])(?<!{_PRIME})(?:[bckm]|lc|rcc?|gr(?:ade)?\.?)[ _]?-?(\d{{2}})"
+    r"(?![\d/]|[.,]\d|\s*[x×])",
+    re.I,
 )
 BARE = re.compile(r"\s*(\d{2,3}(?:\.\d+)?)\s*$")
 THOUSANDS = re.compile(r"\d{1,3}(?:,\d{3})+(?:\.\d+)?")
 
 NUMBER_WITH_UNIT = re.compile(rf"\d\s*(?:{_UNIT})", re.I)
 SPEAKS_OF_STRENGTH = re.compile(
-    r"(?<![a-z])f['’`′]c|(?<![a-z])(?:fcu|rck|fck?\s*[=:])|\d{4}\s*#(?!\s*\d)"
+    rf"(?<![a-z])f{_PRIME}c|(?<![a-z])(?:fcu|rck|fck?\s*[=:])|\d{{4}}\s*#(?!\s*\d)"
     r"|(?<!fire )(?<!exposure )(?:strength|grade|class)[^\d]{0,12}\d{2}"
     r"|(?<![a-z])[bckmhns]-?\d{2,3}(?![\da-z/]|[.,]\d|\s*[x×])"
     r"|(?:concrete|beton|béton|hormig[oó]n|concreto)\W{0,3}(?:[1-9]\d|[2-9]\d{3})(?![\d/.,]|\s*[a-z×%])",
@@ -60,6 +60,7 @@ SPEAKS_OF_STRENGTH = re.compile(
 SPEAKS_OF_BARS = re.compile(
     r"rebar|steel|stahl|acero|acier|(?<![a-z])(?:bars?|fy|stirrups?)(?![a-z])", re.I
 )
+SPEAKS_OF_CUBES = re.compile(r"cub(?:es?|ic|os?|a|ica)(?![a-z])|w(?:ü|ue)rfel", re.I)
 UNSET = frozenset(
     {
         "",
@@ -167,11 +168,19 @@ def _ranges(text: str) -> tuple[list[Range], str]:
 
 
 def _cubes(match: re.Match[str]) -> list[Range]:
-    return [(CUBE_TO_CYLINDER * _in_mpa(match[1], match[2]),) * 2]
+    return [(CUBE_TO_CYLINDER * low, CUBE_TO_CYLINDER * high) for low, high in _cylinders(match)]
 
 
 def _cylinders(match: re.Match[str]) -> list[Range]:
-    return [(_in_mpa(match[1], match[2]),) * 2]
+    """Strengths named as such: nothing else in the text makes up for one that cannot be."""
+    values = _values(match)
+    credible = all(is_credible((value, value)) for value in values)
+    return [(value, value) if credible else (math.nan, math.nan) for value in values]
+
+
+def _values(match: re.Match[str]) -> list[float]:
+    """The numbers of a match in its unit [MPa]."""
+    return [_in_mpa(number, match[2]) for number in re.findall(_NUMBER, match[1])]
 
 
 def _classes(match: re.Match[str]) -> list[Range]:
@@ -182,11 +191,15 @@ def _classes(match: re.Match[str]) -> list[Range]:
 
 
 def _with_unit(match: re.Match[str]) -> list[Range]:
-    """One number with its unit, or two: "25-30 MPa"; those in N may be of cubes."""
-    values = [_in_mpa(number, match[3]) for number in match.groups()[:2] if number is not None]
-    if match[3].lower() == "n":
-        return [_cube_or_cylinder(value) for value in values]
-    return [(value, value) for value in values]
+    """One number with its unit, or several: "25-30 MPa"; those in N may be of cubes."""
+    if match[2].lower() == "n" or _speaks_of_cubes(match.string):
+        return [_cube_or_cylinder(value) for value in _values(match)]
+    return [(value, value) for value in _values(match)]
+
+
+@lru_cache(maxsize=1)
+def _speaks_of_cubes(text: str) -> bool:
+    return SPEAKS_OF_CUBES.search(text) is not None
 
 
 def _in_name(match: re.Match[str]) -> list[Range]:
