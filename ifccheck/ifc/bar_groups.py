@@ -7,8 +7,9 @@ from collections.abc import Iterator, Sequence
 import numpy as np
 
 from ifccheck.beam import Anchor, Bars
+from ifccheck.ifc.bar_clashes import without_clashes
 from ifccheck.ifc.bar_paths import Bools, Floats, Ints
-from ifccheck.ifc.bars import SAME_BAR, Runs, equal_bars, settle_heights
+from ifccheck.ifc.bars import Runs, equal_bars, settle_heights
 from ifccheck.ifc.measured import Measured
 
 SLOPING = 10.0
@@ -28,23 +29,25 @@ def longitudinal_bars(model: Measured, runs: Runs) -> dict[int, tuple[Bars, ...]
     )
     bent = runs.row[runs.poor_bend]
     model.remark(bent.tolist(), "ends in a bend short of a standard hook: taken as straight")
-    labels = _labels(model, runs, beam, steep)
+    runs, counted = without_clashes(model, runs, beam, ~steep)
+    labels = _labels(model, runs, beam, counted)
     found: dict[int, list[Bars]] = {}
     for run, bars in _equal(model, runs, labels, height):
-        if not steep[run]:
+        if counted[run]:
             found.setdefault(int(beam[run]), []).append(bars)
     return {
         key: tuple(sorted(one, key=lambda b: (b.z, b.start, b.end))) for key, one in found.items()
     }
 
 
-def _labels(model: Measured, runs: Runs, beam: Ints, steep: Bools) -> Ints:
-    """Number the runs so that only those of one beam, size, grade and anchors have one number."""
+def _labels(model: Measured, runs: Runs, beam: Ints, counted: Bools) -> Ints:
+    """Number the runs so that only those of one beam, size, grade and anchors have one number,
+    and those that count another than those that do not."""
     table, strand = model.places.table, model.rows.strand[runs.row]
     sizes, grades = model.places.size[strand], model.places.grade[strand]
     label = beam * len(table.sizes) + sizes
     label = label * len(table.grades) + grades
-    return ((label * 2 + runs.start_hook) * 2 + runs.end_hook) * 2 + steep
+    return ((label * 2 + runs.start_hook) * 2 + runs.end_hook) * 2 + counted
 
 
 def _equal(model: Measured, runs: Runs, labels: Ints, height: Floats) -> Iterator[tuple[int, Bars]]:
@@ -52,11 +55,6 @@ def _equal(model: Measured, runs: Runs, labels: Ints, height: Floats) -> Iterato
     order, first = equal_bars(labels, runs, height)
     if not len(order):
         return
-    apart = np.ones(len(order), dtype=bool)
-    apart[1:] = np.diff(runs.y[order]) >= SAME_BAR
-    apart[first] = True
-    model.remark(runs.row[order[~apart]].tolist(), "modelled twice, counted once")
-    order, first = order[apart], first - np.cumsum(~apart)[first]
     stop = np.append(first[1:], len(order))
     columns = (
         order[first],

@@ -33,8 +33,6 @@ LEVEL = 2.0
 """A run rises by no more than this [mm] and is still level."""
 SAME_LAYER, SAME_END = 1.0, 5.0
 """Bars of one layer differ by no more than this in height, and at their ends [mm]."""
-SAME_BAR = 1.0
-"""Two bars nearer to each other than this [mm] are one bar modelled twice."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -54,6 +52,8 @@ class Runs:
     end_hook: Bools
     poor_bend: Bools
     """The bar goes on round a bend at either end, short of a standard hook."""
+    line: Floats
+    """Where the straight run begins and ends, in order of x [mm] (M, 2, 3)."""
 
 
 def find_runs(lines: CentreLines, pieces: Pieces) -> Runs:
@@ -74,6 +74,7 @@ def find_runs(lines: CentreLines, pieces: Pieces) -> Runs:
 def _ended(pieces: Pieces, run: Ints, diameter: Floats, lowest: Floats, highest: Floats) -> Runs:
     ends = [_follow_end(pieces, run, diameter[pieces.row[run]], step) for step in (-1, 1)]
     forward = pieces.direction[run, 0] > 0.0
+    drawn = np.stack([pieces.start[run], pieces.end[run]], axis=1)
     (back_x, back_hook, back_bend), (fore_x, fore_hook, fore_bend) = ends
     return Runs(
         row=pieces.row[run],
@@ -85,6 +86,7 @@ def _ended(pieces: Pieces, run: Ints, diameter: Floats, lowest: Floats, highest:
         start_hook=np.where(forward, back_hook, fore_hook),
         end_hook=np.where(forward, fore_hook, back_hook),
         poor_bend=back_bend | fore_bend,
+        line=np.where(forward[:, None, None], drawn, drawn[:, ::-1]),
     )
 
 
