@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import sys
 from collections.abc import Callable
+from io import TextIOWrapper
 from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
@@ -94,7 +95,8 @@ def survey(model: Path, brief: Path | None) -> None:
 
     with _progress() as say:
         found = _guarded(lambda: pipeline.survey(model, brief, say))
-    _console().print(survey_table(found.model, found.missing))
+    console = _console()
+    console.print(survey_table(found.model, found.missing, console))
 
 
 @main.command()
@@ -104,13 +106,13 @@ def survey(model: Path, brief: Path | None) -> None:
 def sheet(model: Path, beam: str, brief: Path) -> None:
     """Print the line-by-line calculation of BEAM (its GlobalId, Tag or Name)."""
     from ifccheck import pipeline
-    from ifccheck.publish.terminal import sheet_text
+    from ifccheck.publish.terminal_sheet import sheet_text
 
     with _progress() as say:
         sheets = _guarded(lambda: pipeline.sheets(model, beam, brief, say))
     console = _console()
     for each in sheets:
-        console.print(sheet_text(each))
+        console.print(sheet_text(each, console))
 
 
 @main.command()
@@ -119,12 +121,15 @@ def standards() -> None:
     from ifccheck import pipeline
     from ifccheck.publish.terminal import standards_table
 
-    _console().print(standards_table(pipeline.standards()))
+    console = _console()
+    console.print(standards_table(pipeline.standards(), console))
 
 
 def _console() -> Console:
     from rich.console import Console
 
+    if isinstance(sys.stdout, TextIOWrapper):
+        sys.stdout.reconfigure(errors="replace")  # a name that the terminal cannot show
     return Console(markup=False, highlight=False, emoji=False, soft_wrap=False)
 
 

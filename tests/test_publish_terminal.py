@@ -4,38 +4,63 @@ from __future__ import annotations
 
 import io
 import re
+from collections.abc import Callable, Mapping, Sequence
 from dataclasses import replace
+from functools import partial
 from pathlib import Path
 
+import pytest
+from hypothesis import given
+from hypothesis import strategies as st
 from rich.console import Console, RenderableType
+from rich.text import Text
 
-from ifccheck.beam import Verdict
-from ifccheck.publish.terminal import closing_table, sheet_text, survey_table
+from ifccheck.beam import Model, Remark, Verdict
+from ifccheck.publish.quantities import typographic
+from ifccheck.publish.terminal import closing_table, standards_table, survey_table
+from ifccheck.publish.terminal_parts import column_widths
+from ifccheck.publish.terminal_sheet import sheet_text
+from ifccheck.sheet import NOTHING_DEMANDED, CaseReaction, CaseShare, Sheet, SheetCheck
+from ifccheck.standards import Standard
+from ifccheck.standards.discovery import all_standards
 from tests.reports_made_up import hostile_report, made_up_report
 
 REPORT = made_up_report()
 CONTROLS = re.compile("[\x00-\x09\x0b-\x1f\x7f-\x9f\u202a-\u202e\u2066-\u2069]")
 
 
-def console(color: bool = False) -> Console:
-    return Console(
-        file=io.StringIO(), width=140, force_terminal=color, color_system=None, markup=False
-    )
+def console(width: int = 140, encoding: str = "utf-8") -> Console:
+    file = io.TextIOWrapper(io.BytesIO(), encoding=encoding)
+    return Console(file=file, width=width, force_terminal=False, color_system=None, markup=False)
 
 
-def said(what: RenderableType) -> str:
-    shown = console()
-    shown.print(what)
-    text = shown.file
-    assert isinstance(text, io.StringIO)
-    return text.getvalue()
+def printed(shown: Console) -> str:
+    assert isinstance(shown.file, io.TextIOWrapper)
+    shown.file.flush()
+    assert isinstance(shown.file.buffer, io.BytesIO)
+    return shown.file.buffer.getvalue().decode(shown.encoding)
+
+
+def said(make: Callable[[Console], RenderableType], width: int = 140, code: str = "utf-8") -> str:
+    shown = console(width, code)
+    shown.print(make(shown))
+    return printed(shown)
+
+
+def sheet_said(sheet: Sheet, width: int = 140, code: str = "utf-8") -> str:
+    return said(partial(sheet_text, sheet), width, code)
+
+
+def survey_said(
+    model: Model, missing: Mapping[str, Sequence[str]], width: int = 140, code: str = "utf-8"
+) -> str:
+    return said(lambda shown: survey_table(model, missing, shown), width, code)
 
 
 def closing(report: object = REPORT, written: tuple[Path, ...] = ()) -> str:
     shown = console()
     closing_table(report, shown, written)  # type: ignore[arg-type]
-    assert isinstance(shown.file, io.StringIO)
-    return shown.file.getvalue()
+    return printed(shown)
 
 
 def test_the_closing_table_counts_and_names_what_falls_short() -> None:
@@ -65,22 +90,136 @@ def test_many_beams_that_fall_short_are_counted_after_the_first() -> None:
 def test_a_sheet_is_printed_line_by_line() -> None:
     rating = next(r for r in REPORT.ratings.values() if r.utilisation == 1.0004)
     sheet = REPORT.sheet(rating.beam)
-    text = said(sheet_text(sheet))
+    text = sheet_said(sheet)
     assert "falls short in shear  utilisation 1.0004" in text
     for check in sheet.checks:
         for line in check.lines:
             assert line.symbol in text
-            assert line.result in text
+            assert typographic(line.result) in text
     for item in rating.basis:
         assert item.label in text
     assert text.count("assumed: ") == sum(item.assumed for item in rating.basis)
     assert "Not checked: torsion, deflection, crack width." in text
 
 
+def squeezed(text: str) -> str:
+    """Without blanks, ends of lines and the signs between the parts of a line."""
+    return re.sub(r"\s", "", text)
+
+
+@pytest.mark.parametrize("width", [40, 60, 80, 100])
+def test_a_narrow_sheet_leaves_out_no_figure(width: int) -> None:
+    """Formula, numbers and result stand one under the other, folded where they are long."""
+    sheet = shared_out(worst_sheet())
+    text = sheet_said(sheet, width)
+    assert "…" not in text
+    assert max(map(len, text.splitlines())) <= width
+    whole = squeezed(text)
+    for check in sheet.checks:
+        if check.outcome != NOTHING_DEMANDED:
+            assert squeezed(f"utilisation {typographic(check.outcome)}") in whole
+        for line in check.lines:
+            parts = filter(None, (line.formula, line.numbers, line.result))
+            told = squeezed(line.symbol + "".join(f"={typographic(part)}" for part in parts))
+            assert told in whole
+
+
+@pytest.mark.parametrize("width", [120, 160])
+def test_a_wide_sheet_leaves_out_no_figure(width: int) -> None:
+    sheet = shared_out(worst_sheet())
+    text = sheet_said(sheet, width)
+    assert "…" not in text
+    assert max(map(len, text.splitlines())) <= width
+    words = set(text.split())
+    for check in sheet.checks:
+        for line in check.lines:
+            assert set(typographic(f"{line.formula} {line.numbers} {line.result}").split()) <= words
+
+
+def worst_sheet() -> Sheet:
+    return REPORT.sheet(next(r.beam for r in REPORT.ratings.values() if r.utilisation == 1.0004))
+
+
+def shared_out(sheet: Sheet) -> Sheet:
+    """With the parts of the cases, reactions, and a doubt."""
+    shares = (
+        CaseShare("self", "permanent", 1.25, 27.2e6, -3e3),
+        CaseShare("press on the mezzanine", "imposed", 1.5, 41.0e6, 5e3),
+    )
+    checks = tuple(replace(check, shares=shares) for check in sheet.checks if check.lines)
+    idle = SheetCheck("flexure, hogging", "10.1", "", (), 0.0, NOTHING_DEMANDED)
+    doubt = Remark(sheet.beam.key, "read", "two bars lie outside the body", "doubt")
+    rating = replace(sheet.rating, remarks=(*sheet.rating.remarks, doubt))
+    reactions = (CaseReaction("self", 15.3e3, 15.4e3, -8.1e6, 0.0),)
+    return replace(sheet, rating=rating, checks=(*checks, idle), reactions=reactions)
+
+
+def test_a_sheet_tells_how_the_demand_arises_and_its_doubts_first() -> None:
+    text = sheet_said(shared_out(worst_sheet()), 80)
+    assert re.search(r"self +permanent +27\.2 +-3\.00 +1\.25 +34\.0 +-3\.75", text)
+    assert re.search(r"together +95\.5 +3\.75", text)
+    assert re.search(r"self +15\.3 +15\.4 +-8\.10", text)
+    assert "Nothing demanded in flexure, hogging." in text
+    assert text.index("doubt: two bars lie outside the body") < text.index("arises from")
+    assert text.count("two bars lie outside the body") == 1
+
+
+def test_units_are_set_as_the_terminal_can_show_them() -> None:
+    assert "kN·m" in sheet_said(worst_sheet())
+    assert "kN*m" not in sheet_said(worst_sheet())
+    plain_text = sheet_said(worst_sheet(), code="ascii")
+    assert "kN*m" in plain_text
+    survey_said(REPORT.model, {}, code="ascii")
+    closing_table(REPORT, console(encoding="ascii"))
+
+
+def test_words_of_a_survey_and_of_the_standards_are_whole_at_80_columns() -> None:
+    keys = list(REPORT.ratings)
+    missing = {keys[0]: ("reinforcement",), keys[1]: ("yield strength of the stirrups unknown",)}
+    standards = [
+        (standard.id, standard) for _, standard in all_standards() if isinstance(standard, Standard)
+    ]
+    survey = survey_said(REPORT.model, missing, 80)
+    listed = said(lambda shown: standards_table(standards, shown), 80)
+    assert {"reinforcement", "stirrups", "Concrete", "C30/37"} <= set(re.split(r"[\s;]+", survey))
+    words = {word for _, s in standards for word in f"{s.title} {s.edition} {s.actions}".split()}
+    assert words <= set(listed.split())
+    for text in (survey, listed):
+        assert "…" not in text
+        assert max(map(len, text.splitlines())) <= 80
+
+
+@given(
+    st.lists(st.lists(st.text("ab ", max_size=30), min_size=3, max_size=3), min_size=1, max_size=5),
+    st.integers(3, 60),
+)
+def test_columns_share_the_room_and_keep_words_whole_where_they_can(
+    rows: list[list[str]], room: int
+) -> None:
+    widths = column_widths([[Text(cell) for cell in row] for row in rows], room)
+    assert sum(widths) <= room
+    assert min(widths) >= 1
+    longest = [max((len(w) for cell in column for w in cell.split()), default=1)
+               for column in zip(*rows, strict=True)]  # fmt: skip
+    if sum(max(1, word) for word in longest) <= room:
+        assert all(width >= word for width, word in zip(widths, longest, strict=True))
+
+
+def test_doubts_about_the_run_stand_in_the_closing_table() -> None:
+    doubt = Remark(None, "results", "results of an earlier run could not be taken away", "doubt")
+    text = closing(replace(REPORT, remarks=(doubt,)))
+    assert "doubt: results of an earlier run could not be taken away" in text
+    assert text.index("doubt:") < text.index("An aid for a licensed engineer")
+
+
+def test_reasons_are_told_with_what_settles_them() -> None:
+    assert "loads_complete = true" in closing()
+
+
 def test_a_survey_groups_beams_and_says_what_is_missing() -> None:
     keys = list(REPORT.ratings)
     missing = {keys[0]: ("reinforcement",), keys[1]: ("reinforcement", "material")}
-    text = said(survey_table(REPORT.model, missing))
+    text = survey_said(REPORT.model, missing)
     assert "press-hall.ifc (IFC4): 35 beams in scope" in text
     assert "reinforcement (2 of 6); material (1 of 6)" in text
     assert "33 of 35 beams lack nothing" in text
@@ -91,8 +230,8 @@ def test_names_cannot_steer_the_terminal() -> None:
     report = hostile_report()
     texts = [
         closing(report, (Path("out/\x1b[2J.ifc"),)),
-        said(survey_table(report.model, {})),
-        *(said(sheet_text(report.sheet(key))) for key in list(report.ratings)[:8]),
+        survey_said(report.model, {}),
+        *(sheet_said(report.sheet(key)) for key in list(report.ratings)[:8]),
     ]
     for text in texts:
         assert CONTROLS.search(text) is None
