@@ -229,15 +229,16 @@ class Beam:
     material: str
     concrete_strength: Given | None
     concrete_density: Given | None
-    """Density of the concrete [kg/m3] where the model states it."""
+    """Density of the concrete [kg/m3] where the model states it; the least of several."""
     cover: Given | None
     reinforcement: tuple[Reinforcement, ...] = ()
     """At most one entry per source, as found in the model (or added from the schedule)."""
     reasons: tuple[Reason, ...] = ()
     remarks: tuple[Remark, ...] = ()
     strength_reason: Reason | None = None
-    """Why the strength that the model states cannot be read; it counts unless the brief states
-    the strength of this beam."""
+    """Why its strength cannot be read; it counts unless the brief states that of this beam."""
+    greatest_density: Given | None = None
+    """The greatest density that the model states for its concrete, for its weight [kg/m3]"""
 
     @property
     def mark(self) -> str:

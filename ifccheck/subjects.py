@@ -234,7 +234,7 @@ def _concrete(beam: Beam, sources: _Sources, findings: _Findings) -> _Concrete:
             factor, density.source if density else "normal density", assumed=density is None
         ),
         aggregate_size=_aggregate(stated, sources, findings),
-        unit_weight=_unit_weight(density, sources, findings),
+        unit_weight=_unit_weight(_first(stated.density, beam.greatest_density), sources, findings),
     )
 
 

@@ -637,6 +637,24 @@ def test_cover_that_is_none_is_not_used() -> None:
     assert "is no cover" in found.remarks[0].text
 
 
+def test_of_several_densities_the_least_and_the_greatest_are_kept() -> None:
+    building = Building("IFC4")
+    beam = building.beam(solid(building), material="")
+    make = building.file.create_entity
+    layers = []
+    for name, density in (("Concrete C30/37", 2300.0), ("Heavy concrete C30/37", 3000.0)):
+        one = building.entity("IfcMaterial", name)
+        value = make("IfcMassDensityMeasure", density)
+        single = building.entity("IfcPropertySingleValue", "MassDensity", None, value)
+        building.entity("IfcMaterialProperties", "Pset_MaterialCommon", None, [single], one)
+        layers.append(building.entity("IfcMaterialLayer", one, 100.0))
+    building.give_material(beam, building.entity("IfcMaterialLayerSet", layers))
+    found = only_beam(building.read())
+    assert found.concrete_density is not None
+    assert found.greatest_density is not None
+    assert (found.concrete_density.value, found.greatest_density.value) == (2300.0, 3000.0)
+
+
 def test_lightweight_concrete_of_unstated_density_is_a_doubt() -> None:
     beam = only_beam(read_one("LC30/33"))
     (reason,) = beam.reasons

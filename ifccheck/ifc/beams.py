@@ -214,7 +214,7 @@ class BeamReader:
         readings += strengths_told(clues.properties)
         strength = concrete_strength(readings, identity.key)
         doubts.remarks += strength.remarks
-        density = self._density(clues, doubts)
+        densities = self._densities(clues, doubts)
         return Beam(
             key=identity.key,
             guid=identity.guid,
@@ -231,25 +231,28 @@ class BeamReader:
             material=clues.definition.title,
             concrete_strength=strength.given,
             strength_reason=strength.reason,
-            concrete_density=density,
+            concrete_density=min(densities, key=_value, default=None),
+            greatest_density=max(densities, key=_value, default=None),
             cover=_cover(sets, doubts),
             reasons=tuple(doubts.reasons),
             remarks=tuple(doubts.remarks),
         )
 
-    def _density(self, clues: Clues, doubts: _Doubts) -> Given | None:
-        """The least density that the materials state."""
+    def _densities(self, clues: Clues, doubts: _Doubts) -> list[Given]:
+        """The densities that the materials state."""
         found: list[Given] = []
         for material in clues.definition.materials:
             for name, values in self._context.properties.of_material(material.step_id).items():
                 if (value := values.get("MassDensity")) is not None:
                     source = f'{name}.MassDensity of "{material.name}"'
                     found += _stated_density(value, source, doubts)
-        if found:
-            return min(found, key=lambda given: given.value)
-        if named := _first(speaks_of_lightweight, _all_names(clues)):
+        if not found and (named := _first(speaks_of_lightweight, _all_names(clues))):
             doubts.reason(f'lightweight concrete of unstated density: "{named}"', blocking=False)
-        return None
+        return found
+
+
+def _value(given: Given) -> float:
+    return given.value
 
 
 def _told_by_properties(sets: Sets) -> tuple[tuple[str, str], ...]:
@@ -299,7 +302,7 @@ def _cover(sets: Sets, doubts: _Doubts) -> Given | None:
             found.append(Given(cover, source))
         else:
             doubts.remark(MATERIALS, f"{source} of {value.value} is no cover: not used")
-    return max(found, key=lambda given: given.value, default=None)
+    return max(found, key=_value, default=None)
 
 
 def _stated_density(value: PropertyValue, source: str, doubts: _Doubts) -> Iterator[Given]:

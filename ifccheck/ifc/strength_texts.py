@@ -146,7 +146,9 @@ def read_strength_text(text: str, source: str, bare: bool = False) -> Reading | 
     if all(map(_doubtful, credible)) and SPEAKS_OF_BARS.search(text):
         return Unread(source)  # a grade of the bars, perhaps
     low, high = lowest_of(credible)
-    return Reading(low, high, source, tuple(a for a, b in found if not _admits((a, b), low)))
+    return Reading(
+        low, high, source, tuple(dict.fromkeys(a for a, b in found if not _admits((a, b), low)))
+    )
 
 
 def is_only_steel(text: str) -> bool:
