@@ -27,7 +27,8 @@ from ifccheck.publish.html import render
 from ifccheck.publish.json import ratings_json
 from ifccheck.publish.property_sets import result_sets
 from ifccheck.publish.report import Report
-from ifccheck.publish.terminal import closing_table, sheet_text
+from ifccheck.publish.terminal import closing_table
+from ifccheck.publish.terminal_sheet import sheet_text
 from ifccheck.rating import Rating
 from tests.step_halls import DEFAULTS, LOAD, NOTATION, Bar, Beam, Block, brief, guid_of, hall, write
 
@@ -689,7 +690,7 @@ def printed(report: Report) -> dict[str, list[str]]:
     console = Console(file=stream, width=200, color_system=None)
     closing_table(report, console)
     for beam in report.model.beams:
-        console.print(sheet_text(report.sheet(beam.key)))
+        console.print(sheet_text(report.sheet(beam.key), console))
     cells = [cell for row in csv.reader(io.StringIO(ratings_csv(report))) for cell in row]
     return {"html": page.texts, "terminal": stream.getvalue().splitlines(), "csv": cells}
 
