@@ -13,7 +13,6 @@ from ifccheck.beam import (
     Contact,
     Face,
     Given,
-    Line,
     Load,
     Model,
     Reason,
@@ -37,7 +36,7 @@ from ifccheck.brief.supports import resolve_supports, stated_ends
 from ifccheck.detailing import choose_source, lay_out
 from ifccheck.frame.carrying import contacts_of, pressed_ends
 from ifccheck.frame.contacts import between_reactions, reactions_reason
-from ifccheck.frame.spans import single_span, support_faces
+from ifccheck.frame.spans import Standing, stand_alone
 from ifccheck.rating.subject import Subject, Unrated
 from ifccheck.standards import Standard
 from ifccheck.units import show
@@ -110,16 +109,17 @@ def gather(model: Model, brief: Brief, matches: Matches, standard: Standard) -> 
         supports=supports,
         support_remarks=_by_beam(remarks),
     )
-    lines = {
-        key: single_span(beams[key], pair, _stated_span(sources, key))
+    standing = {
+        key: stand_alone(beams[key], pair, contacts.get(key, ()), _stated_span(sources, key))
         for key, pair in supports.items()
         if not isinstance(pair, Reason) and beams[key].axis
     }
-    spans = {key: line.spans[0] for key, line in lines.items()}
+    spans = {key: each.span for key, each in standing.items()}
     loads = loads_on_beams(brief, matches, beams, spans, contacts)
     of_beam = _by_beam(loads)
     found = [
-        _one(beam, sources, lines.get(beam.key), of_beam.get(beam.key, ())) for beam in model.beams
+        _one(beam, sources, standing.get(beam.key), of_beam.get(beam.key, ()))
+        for beam in model.beams
     ]
     return Gathered(
         subjects=tuple(each for each in found if isinstance(each, Subject)),
@@ -136,13 +136,13 @@ def _by_beam(rows: Sequence[Row]) -> dict[str, list[Row]]:
     return grouped
 
 
-def _stated_span(sources: _Sources, key: str) -> float | None:
+def _stated_span(sources: _Sources, key: str) -> Given | None:
     statement = sources.statements.get(key)
-    return statement.span.value if statement and statement.span else None
+    return statement.span if statement else None
 
 
 def _one(
-    beam: Beam, sources: _Sources, line: Line | None, loads: Sequence[Load]
+    beam: Beam, sources: _Sources, standing: Standing | None, loads: Sequence[Load]
 ) -> Subject | Unrated:
     findings = _Findings(beam.key, list(beam.reasons), list(beam.remarks))
     statement = sources.statements.get(beam.key, BeamStatement())
@@ -152,21 +152,23 @@ def _one(
         for text in _stated(statement)
     ]
     concrete = _concrete(beam, sources, findings)
-    if line is None and beam.axis:
+    if standing is None and beam.axis:
         unknown = sources.supports[beam.key]
         findings.refuse(unknown.text if isinstance(unknown, Reason) else "supports unknown")
-    elif line is not None:
-        supports = (line.spans[0].start_support, line.spans[0].end_support)
+    elif standing is not None:
+        supports = (standing.span.start_support, standing.span.end_support)
         overhang = span_reason(statement, beam, supports)
-        findings.reasons += [overhang] if overhang else []
+        findings.reasons += [overhang] if overhang else standing.reasons
+        findings.remarks += standing.remarks
     steel = _steel(beam, sources, findings) if beam.runs else None
-    _judge_loads(beam, sources, statement, line, loads, findings)
-    if line is None or steel is None or any(reason.blocking for reason in findings.reasons):
+    _judge_loads(beam, sources, statement, standing, loads, findings)
+    if standing is None or steel is None or any(reason.blocking for reason in findings.reasons):
         return Unrated(beam, _distinct(findings.reasons), tuple(findings.remarks))
     return Subject(
         beam=beam,
-        line=line,
-        faces=support_faces(line.spans[0]),
+        line=standing.line,
+        faces=standing.faces,
+        span_source=standing.source,
         direct=pressed_ends(sources.contacts.get(beam.key, ())),
         side_loaded=any(
             contact.place == "between" and contact.side == "side"
@@ -382,7 +384,7 @@ def _judge_loads(
     beam: Beam,
     sources: _Sources,
     statement: BeamStatement,
-    line: Line | None,
+    standing: Standing | None,
     loads: Sequence[Load],
     findings: _Findings,
 ) -> None:
@@ -400,15 +402,13 @@ def _judge_loads(
     natures = {case.name: case.nature for case in sources.brief.cases}
     if any(natures.get(load.case) == "crane" for load in loads):
         findings.remarks.append(Remark(beam.key, "demand", _CRANE, "assumption"))
-    if line and not statement.loads_complete:
-        span = line.spans[0]
-        faces = support_faces(span)
+    if standing and not statement.loads_complete:
         resting = between_reactions(
             sources.contacts.get(beam.key, ()),
             beam.length,
-            (faces[0], beam.length - faces[1]),
-            free_start=span.start_support.kind == "free",
-            free_end=span.end_support.kind == "free",
+            standing.bearings,
+            free_start=standing.span.start_support.kind == "free",
+            free_end=standing.span.end_support.kind == "free",
         )
         reason = reactions_reason(resting)
         findings.reasons += [reason] if reason else []

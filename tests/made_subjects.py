@@ -79,7 +79,8 @@ def subject(
     return Subject(
         beam=beam,
         line=Line((key,), (Span(bearing / 2.0, length - bearing / 2.0, *supports),)),
-        faces=(bearing, length - bearing), direct=(True, True), bars=bars, stirrups=stirrups,
+        faces=(bearing, length - bearing), span_source="test", direct=(True, True),
+        bars=bars, stirrups=stirrups,
         stirrups_known=True, silent=(), side_loaded=False, statements=(),
         reinforcement_source="bars", loads=tuple(loads),
         concrete_strength=Given(strength, "test"), unit_weight=Given(24e-6, "test"),

@@ -1,30 +1,166 @@
-"""Where a beam spans, from how its ends stand."""
+"""Where a beam spans, from how its ends stand and what they meet."""
 
 from __future__ import annotations
 
-from ifccheck.beam import Beam, Line, Span, Support
+from collections.abc import Sequence
+from dataclasses import dataclass
+from typing import Literal
+
+from ifccheck.beam import Beam, Contact, Given, Line, Reason, Remark, Span, Support
+from ifccheck.frame.carrying import END_TO_END
+from ifccheck.frame.contacts import RESTING, TOLERANCE, is_seat
+from ifccheck.units import show
+
+End = Literal["start", "end"]
+
+UNKNOWN_BEARING = 0.05
+"""Part of a beam's length that a bearing may cover of which neither model nor brief tells."""
 
 
-def single_span(beam: Beam, supports: tuple[Support, Support], span: float | None) -> Line:
-    """The line of a beam that stands alone.
+@dataclass(frozen=True, slots=True)
+class Standing:
+    """How one beam stands alone."""
 
-    A span runs between the centres of its bearings, a cantilever's from the face of its
-    support. A ``span`` [mm] that the engineer states replaces that length: a cantilever's is
-    counted from the face, any other lies centred on the beam.
+    line: Line
+    faces: tuple[float, float]
+    """x of the faces of the two supports, within the beam [mm]; a free end is its own face"""
+    bearings: tuple[float, float]
+    """How far the bearings that the brief states reach in from either end [mm]"""
+    source: str
+    """Where the span runs from and to, for people"""
+    reasons: tuple[Reason, ...] = ()
+    remarks: tuple[Remark, ...] = ()
+
+    @property
+    def span(self) -> Span:
+        """The one span of the line."""
+        return self.line.spans[0]
+
+
+@dataclass(frozen=True, slots=True)
+class _Seating:
+    """How one end is seated."""
+
+    centre: float
+    """How far the centre of the support lies beyond the beam's end; inside where negative [mm]"""
+    face: float
+    """How far the support's face lies inside the beam's end [mm]"""
+    inner: float
+    """The most that the support may reach in [mm]"""
+    told: str
+    inferred: bool = False
+
+
+def stand_alone(
+    beam: Beam,
+    supports: tuple[Support, Support],
+    contacts: Sequence[Contact],
+    stated: Given | None,
+) -> Standing:
+    """Stand a beam on its two supports.
+
+    A span runs between the centres of its supports, a cantilever's from the face of its support.
+    Where an end meets the face of another member, the centre lies beyond the end: by half the
+    bearing that the brief states, else by half of what the model shows of that member beyond the
+    end, and by no more than half the beam's depth (the clear span plus the depth need not be
+    exceeded: CSA A23.3-14 9.2.3, from memory). Where an end lies on a member, the bearing lies
+    within the beam; where neither brief nor model tells of one, the beam's end counts as centre
+    and face. A span that the engineer states replaces that length: a cantilever's is counted
+    from the face, any other lies centred.
+
+    Parameters
+    ----------
+    beam
+        With an axis.
+    supports, contacts
+        Of its start and end, and all that touches it.
+    stated
+        The span that the brief states [mm].
     """
-    start, end = _bearing_centres(beam.length, supports)
-    if span is not None:
-        start, end = _stated(start, end, supports, span)
-    return Line(beams=(beam.key,), spans=(Span(start, end, *supports),))
+    seats = tuple(
+        _seating(beam, end, support, contacts) for end, support in zip(_ENDS, supports, strict=True)
+    )
+    start, end = _between(beam.length, supports, seats)
+    source = f"from {seats[0].told} to {seats[1].told}"
+    if stated is not None:
+        start, end = _stated(start, end, supports, stated.value)
+        source = stated.source
+    return Standing(
+        line=Line(beams=(beam.key,), spans=(Span(start, end, *supports),)),
+        faces=(seats[0].face, beam.length - seats[1].face),
+        bearings=(seats[0].face, seats[1].face),
+        source=source,
+        reasons=() if stated is None else _too_short(beam.length, seats, stated),
+        remarks=_remarks(beam.key, seats, source) if stated is None else (),
+    )
 
 
-def _bearing_centres(length: float, supports: tuple[Support, Support]) -> tuple[float, float]:
+_ENDS: tuple[End, End] = ("start", "end")
+
+
+def _seating(beam: Beam, end: End, support: Support, contacts: Sequence[Contact]) -> _Seating:
+    if support.kind == "free":
+        return _Seating(0.0, 0.0, 0.0, f"its free {end}")
+    seats = _seats(end, contacts)
+    facing = [contact for contact in seats if contact.side == "end"]
+    if facing:
+        return _facing(beam, end, support, max(facing, key=lambda contact: contact.beyond))
+    if not seats:
+        unknown = UNKNOWN_BEARING * beam.length
+        return _Seating(0.0, support.bearing, support.bearing or unknown, f"its {end}")
+    reach = max(_inside(contact, beam.length) for contact in seats)
+    if support.bearing:
+        half = support.bearing / 2.0
+        told = f"the middle of its stated bearing, {show(half, 'dimension')} within its {end}"
+        return _Seating(-half, support.bearing, max(support.bearing, reach), told)
+    return _Seating(0.0, 0.0, reach, f"its {end}")
+
+
+def _seats(end: End, contacts: Sequence[Contact]) -> list[Contact]:
+    """What surely holds an end; without such, what it faces and that may be its support."""
+    here = [contact for contact in contacts if contact.place == end]
+    sure = [contact for contact in here if is_seat(contact) and not contact.doubt]
+    return sure or [
+        contact
+        for contact in here
+        if contact.side in ("below", "end")
+        and contact.doubt != END_TO_END
+        and contact.other_class not in RESTING
+    ]
+
+
+def _inside(contact: Contact, length: float) -> float:
+    return contact.end if contact.place == "start" else length - contact.start
+
+
+def _facing(beam: Beam, end: End, support: Support, contact: Contact) -> _Seating:
+    """An end that meets the face of another member."""
+    half_depth = _depth(beam) / 2.0
+    half = (support.bearing or contact.beyond) / 2.0
+    beyond = min(half, half_depth)
+    whose = "its stated bearing" if support.bearing else contact.other
+    what = f"the centre of {whose}" if half <= half_depth else "half its depth"
+    told = f"{what}, {show(beyond, 'dimension')} beyond its {end}"
+    return _Seating(beyond, 0.0, 0.0, told, inferred=not support.bearing)
+
+
+def _depth(beam: Beam) -> float:
+    outlines = [run.outline for run in beam.runs]
+    outlines += [run.outline_end for run in beam.runs if run.outline_end is not None]
+    heights = [z for outline in outlines for ring in outline.rings for _, z in ring]
+    return max(heights, default=0.0) - min(heights, default=0.0)
+
+
+def _between(
+    length: float, supports: tuple[Support, Support], seats: Sequence[_Seating]
+) -> tuple[float, float]:
+    """From centre to centre, or from the face to the tip."""
     first, last = supports
     if last.kind == "free":
-        return first.bearing, length
+        return seats[0].face, length
     if first.kind == "free":
-        return 0.0, length - last.bearing
-    return first.bearing / 2.0, length - last.bearing / 2.0
+        return 0.0, length - seats[1].face
+    return -seats[0].centre, length + seats[1].centre
 
 
 def _stated(
@@ -38,8 +174,19 @@ def _stated(
     return middle - span / 2.0, middle + span / 2.0
 
 
-def support_faces(span: Span) -> tuple[float, float]:
-    """Places [mm] of the faces of a span's supports; a free end is its own face."""
-    if "free" in (span.start_support.kind, span.end_support.kind):
-        return span.start, span.end
-    return span.start + span.start_support.bearing / 2.0, span.end - span.end_support.bearing / 2.0
+def _too_short(length: float, seats: Sequence[_Seating], stated: Given) -> tuple[Reason, ...]:
+    """Refuse a stated span that does not even reach from face to face."""
+    clear = length - sum(seat.inner for seat in seats)
+    if stated.value >= clear - TOLERANCE:
+        return ()
+    text = (
+        f"the stated span of {show(stated.value, 'length')} ({stated.source}) is less than the"
+        f" {show(clear, 'length')} between the faces of its supports"
+    )
+    return (Reason(text),)
+
+
+def _remarks(key: str, seats: Sequence[_Seating], source: str) -> tuple[Remark, ...]:
+    if not any(seat.inferred for seat in seats):
+        return ()
+    return (Remark(key, "supports", f"the span is taken {source}", "assumption"),)

@@ -90,16 +90,18 @@ def frame_of(subjects: Sequence[Subject], cases: Sequence[Case]) -> Frame:
     stated = load_table(
         [load for subject in subjects for load in subject.loads], row_of_beam, row_of_case
     )
+    first, last = _first_of(runs.beam), _last_of(runs.beam)
     weight = self_weight_lines(
         beam=runs.beam,
         case=row_of_case[SELF],
-        start=runs.start,
-        end=runs.end,
+        start=np.where(first, np.minimum(runs.start, spans.start[runs.beam]), runs.start),
+        end=np.where(last, np.maximum(runs.end, spans.end[runs.beam]), runs.end),
         area_start=runs.area,
         area_end=runs.area,
         unit_weight=np.array([subject.unit_weight.value for subject in subjects])[runs.beam],
     )
     members = members_of(subjects, outlines)
+    lengths = np.array([subject.beam.length for subject in subjects])
     return Frame(
         members=members,
         runs=runs,
@@ -107,9 +109,19 @@ def frame_of(subjects: Sequence[Subject], cases: Sequence[Case]) -> Frame:
         spans=spans,
         faces=np.array([subject.faces for subject in subjects]),
         loads=join_loads(stated, weight),
-        checked=checked_stretch(members, spans),
+        checked=checked_stretch(members, spans, lengths),
         side_loaded=np.array([subject.side_loaded for subject in subjects]),
     )
+
+
+def _first_of(beam: Ints) -> Bools:
+    """Whether each row is the first of its beam."""
+    return np.append(True, beam[1:] != beam[:-1])[: beam.size]
+
+
+def _last_of(beam: Ints) -> Bools:
+    """Whether each row is the last of its beam."""
+    return np.append(beam[1:] != beam[:-1], True)[: beam.size]
 
 
 @dataclass(frozen=True, slots=True)
@@ -281,32 +293,38 @@ def make_station_arrays(
     )
 
 
-def checked_stretch(members: Members, spans: SpanTable) -> Floats:
+def checked_stretch(members: Members, spans: SpanTable, lengths: Floats) -> Floats:
     """Where the checks of each beam begin and end [mm] (B, 2).
 
-    The span; but at a free end whose bars stop in the end cover, the last END_COVER at most is
-    plain concrete, and checks end a little inside the last bar, whose stress there is next to
-    nothing. What stands on that stretch acts on the rest all the same.
+    The span, as far as the beam's body goes (0 to its length); but at a free end whose bars stop
+    in the end cover, the last END_COVER at most is plain concrete, and checks end a little inside
+    the last bar, whose stress there is next to nothing. What stands on that stretch acts on the
+    rest all the same.
     """
     present = members.layer_area > 0.0
     first = np.where(present, members.layer_start, np.inf).min(axis=1)
     last = np.where(present, members.layer_end, -np.inf).max(axis=1)
     start_tip = (spans.start_kind == FREE) & (first - spans.start <= END_COVER)
     end_tip = (spans.end_kind == FREE) & (spans.end - last <= END_COVER)
+    start, end = np.maximum(spans.start, 0.0), np.minimum(spans.end, lengths)
     return np.stack(
         [
-            np.where(start_tip, np.maximum(spans.start, first + _INSIDE_LAST_BAR), spans.start),
-            np.where(end_tip, np.minimum(spans.end, last - _INSIDE_LAST_BAR), spans.end),
+            np.where(start_tip, np.maximum(start, first + _INSIDE_LAST_BAR), start),
+            np.where(end_tip, np.minimum(end, last - _INSIDE_LAST_BAR), end),
         ],
         axis=-1,
     )
 
 
 def within(stations: StationTable, stretch: Floats) -> StationTable:
-    """The stations that lie on a stretch of each beam (B, 2)."""
+    """The stations that lie on a stretch of each beam (B, 2); at its ends those just inside."""
     low, high = stretch[stations.beam].T
-    kept = (stations.x >= low - SAME_PLACE) & (stations.x <= high + SAME_PLACE)
-    return StationTable(stations.beam[kept], stations.x[kept], stations.side[kept])
+    x, side = stations.x, stations.side
+    first, last = np.abs(x - low) <= SAME_PLACE, np.abs(x - high) <= SAME_PLACE
+    kept = (x >= low - SAME_PLACE) & (x <= high + SAME_PLACE)
+    kept &= ~(first & (side < 0)) & ~(last & (side > 0))
+    side = np.where(first, 1, np.where(last, -1, side))
+    return StationTable(stations.beam[kept], x[kept], side[kept])
 
 
 def _between(x: Floats, faces: Floats) -> Bools:

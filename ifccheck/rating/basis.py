@@ -69,7 +69,7 @@ def _yields(name: str, label: str, given: Sequence[Given]) -> list[BasisItem]:
 def _standing(subject: Subject) -> list[BasisItem]:
     span = subject.span
     return [
-        BasisItem("Span", "span", span.end - span.start, "length", "supports"),
+        BasisItem("Span", "span", span.end - span.start, "length", subject.span_source),
         *([_statements(subject)] if subject.statements else []),
         _support("StartSupport", "support at the start", span.start_support),
         _support("EndSupport", "support at the end", span.end_support),

@@ -26,6 +26,8 @@ class Subject:
     reinforcement_source: str
     faces: tuple[float, float]
     """x of the faces of the two supports [mm]"""
+    span_source: str
+    """Where the span runs from and to, or who states it"""
     direct: tuple[bool, bool]
     """Whether the reaction compresses the start and the end: a bearing from below or a column,
     not the side of another beam"""
