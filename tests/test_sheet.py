@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import math
+import re
 
 import numpy as np
 import pytest
@@ -113,3 +114,15 @@ def test_a_check_of_which_nothing_is_demanded_says_so() -> None:
     sheet = sheet_of((line("floor", 10.0),), ("pinned", "pinned"))
     hogging = next(check for check in sheet.checks if "hogging" in check.title)
     assert (hogging.outcome, hogging.lines, hogging.shares) == ("nothing demanded", (), ())
+
+
+def test_the_safe_load_of_a_trapezoid_gives_its_two_intensities() -> None:
+    """The factor on 4 kN/m and on 12 kN/m, neither rounded up."""
+    press = Load("beam", "press", "line", 1200.0, 4800.0, (4.0, 12.0), text="4 to 12 kN/m")
+    _, (rating,) = rated(subject(loads=(press,)))
+    (safe,) = rating.safe_loads
+    found = re.fullmatch(r"(\S+) x assigned: (\S+) kN/m to (\S+) kN/m", safe.text)
+    assert found is not None
+    low, high = float(found[2]), float(found[3])
+    assert low <= 4.0 * safe.factor < low * 1.01
+    assert high <= 12.0 * safe.factor < high * 1.01

@@ -192,4 +192,11 @@ def _safe_load_text(factor: float, kind: str, value: float, loads: Sequence[Load
         return f"{show(factor * value, 'force', rounding='down')} at {place}"
     if kind == "line":
         return show(factor * value, "line_load", rounding="down")
-    return f"{show_ratio(factor)} x assigned"
+    text = f"{show_ratio(factor)} x assigned"
+    if len(loads) != 1 or loads[0].kind != "line":
+        return text
+    return f"{text}: {' to '.join(_toward_zero(factor * end) for end in loads[0].values)}"
+
+
+def _toward_zero(intensity: float) -> str:
+    return show(intensity, "line_load", rounding="down" if intensity >= 0.0 else "up")
