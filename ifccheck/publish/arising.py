@@ -7,8 +7,9 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 
 from ifccheck.beam import Span
-from ifccheck.publish.quantities import number_and_unit, quantity_words
+from ifccheck.publish.quantities import quantity_words
 from ifccheck.sheet import CaseReaction, CaseShare, Sheet
+from ifccheck.units import show
 
 
 @dataclass(frozen=True, slots=True)
@@ -100,11 +101,11 @@ def reaction_rows(reactions: Sequence[CaseReaction]) -> list[ReactionRow]:
 
 
 def _moment(value: float) -> str:
-    return number_and_unit(_clean(value), "N*mm")[0]
+    return show(_clean(value), "moment").partition(" ")[0]
 
 
 def _force(value: float) -> str:
-    return number_and_unit(_clean(value), "N")[0]
+    return show(_clean(value), "force").partition(" ")[0]
 
 
 def _clean(value: float) -> float:
