@@ -304,7 +304,7 @@ def write_floor(works: PrintWorks) -> None:
             mark = f"T-{111 + 2 * i + j}"
             place = Place(LEVEL_1, (x, start, -600.0), (0.0, 1.0))
             beam = works.traced(mark, place, tee(300.0, 600.0, 1500.0, 150.0), end - start)
-            bottom = "4-25M" if i != 3 else "6-20M"
+            bottom = "5-25M" if i != 3 else "6-20M"
             stirrups = "10M @ 250 2 legs" if i != 4 else "10M @ 250"
             works.notation(beam, mark, "2-20M", bottom, stirrups)
     for i in range(5):
@@ -319,10 +319,10 @@ def write_floor(works: PrintWorks) -> None:
             mark = f"R-{161 + 2 * number + j}"
             start = (line * BAY_X, j * BAY_Y + COLUMN / 2, -600.0)
             length = BAY_Y - COLUMN
-            beam = works.rectangular(mark, Place(LEVEL_1, start, (0.0, 1.0)), 300.0, 600.0, length)
-            layers = rectangle_bars(300.0, 600.0, length, (3, "20M"), (2, "20M"))
+            beam = works.rectangular(mark, Place(LEVEL_1, start, (0.0, 1.0)), 280.0, 600.0, length)
+            layers = rectangle_bars(280.0, 600.0, length, (3, "25M"), (2, "20M"))
             spacing = 250.0 if number != 1 else 520.0
-            zones = rectangle_zones(300.0, 600.0, [("10M", spacing, 75.0, length - 75.0)])
+            zones = rectangle_zones(280.0, 600.0, [("10M", spacing, 75.0, length - 75.0)])
             works.bars(beam, mark, layers, zones)
 
 
