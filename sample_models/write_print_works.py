@@ -304,7 +304,7 @@ def write_floor(works: PrintWorks) -> None:
             mark = f"T-{111 + 2 * i + j}"
             place = Place(LEVEL_1, (x, start, -600.0), (0.0, 1.0))
             beam = works.traced(mark, place, tee(300.0, 600.0, 1500.0, 150.0), end - start)
-            bottom = "5-25M" if i != 3 else "6-20M"
+            bottom = "5-25M" if i != 3 else "4-25M"
             stirrups = "10M @ 250 2 legs" if i != 4 else "10M @ 250"
             works.notation(beam, mark, "2-20M", bottom, stirrups)
     for i in range(5):
