@@ -276,7 +276,7 @@ def write_columns(works: PrintWorks) -> None:
 def write_girders(works: PrintWorks) -> None:
     """Girders on line B: physical bars, fixed at both ends by the brief."""
     length = BAY_X - COLUMN
-    supply = [((4, "25M"), (4, "25M"), 200.0), ((3, "20M"), (4, "25M"), 200.0),
+    supply = [((4, "25M"), (4, "25M"), 200.0), ((3, "25M"), (4, "25M"), 200.0),
               ((4, "25M"), (4, "25M"), 520.0), ((4, "25M"), (3, "25M"), 200.0),
               ((4, "25M"), (4, "25M"), 200.0)]  # fmt: skip
     for i, (bottom, top, spacing) in enumerate(supply):
