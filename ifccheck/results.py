@@ -133,14 +133,25 @@ def _case_text(
     return safe.governing
 
 
+_BY_BEAM = {
+    "the span is taken from ": "the span is taken from centre to centre of what the beam stands"
+    " on, or from its ends: each sheet says which",
+}
+"""Assumptions that differ only by the members that they name, by how they begin."""
+
+
 def _assumptions(ratings: Iterable[Rating]) -> tuple[Assumption, ...]:
     """Every assumption once, with the beams that it was made for."""
     beams: dict[str, list[str]] = {}
     for rating in ratings:
         for remark in rating.remarks:
             if remark.kind == "assumption":
-                beams.setdefault(remark.text, []).append(rating.beam)
+                beams.setdefault(_assumed(remark.text), []).append(rating.beam)
     return tuple(Assumption(text, tuple(dict.fromkeys(keys))) for text, keys in beams.items())
+
+
+def _assumed(text: str) -> str:
+    return next((words for start, words in _BY_BEAM.items() if text.startswith(start)), text)
 
 
 def files_of(
