@@ -282,6 +282,125 @@ def test_stirrups_in_a_low_and_in_a_high_place_of_one_map_are_told_apart() -> No
     assert f"#{bars[0].id()}" not in found.reasons
 
 
+# the same stirrups modelled twice: legs nearer than two can lie
+
+
+PLACES = (100.0, 300.0, 500.0)
+
+
+@pytest.mark.parametrize(
+    ("along", "wider", "higher"),
+    [(0, 3, 0), (4, 0, 0), (8, 8, 0), (-4, -3, 5), (0, 0, 15), (4, 3, -8)],
+)
+def test_stirrups_nearer_than_they_can_lie_count_once(
+    along: float, wider: float, higher: float
+) -> None:
+    copy = [
+        closed_stirrup(x + along, 110.0 + wider, 40.0 - higher / 2.0, 560.0 + higher / 2.0)
+        for x in PLACES
+    ]
+    found = read_stirrups(*at(list(PLACES)), *copy)
+    assert [zone.legs for zone in found.stirrups] == [2]
+    assert found.stirrups[0].leg_area == pytest.approx(TEN)
+    assert "modelled twice" in found.remarks
+    assert [s.kind for s in found.source("bars").remarks if "twice" in s.text] == ["doubt"]
+
+
+@pytest.mark.parametrize(("along", "wider"), [(0, 10), (10, 0)])
+def test_stirrups_that_touch_count_each(along: float, wider: float) -> None:
+    copy = [closed_stirrup(x + along, 110.0 + wider, 40.0, 560.0) for x in PLACES]
+    found = read_stirrups(*at(list(PLACES)), *copy)
+    assert [zone.legs for zone in found.stirrups] == [4]
+    assert "twice" not in found.remarks
+
+
+def test_of_stirrups_in_one_another_the_thinner_counts() -> None:
+    model = ModelWithBars()
+    beam = model.beam()
+    model.bars(beam, straight(40, 5960, 0, 60), diameter=20.0)
+    model.bars(beam, *at(list(PLACES)), diameter=12.0)
+    model.bars(beam, *at(list(PLACES)), diameter=8.0)
+    (zone,) = model.read(beam).stirrups
+    assert zone.legs * zone.leg_area == pytest.approx(2.0 * math.pi * 64.0 / 4.0)
+
+
+def test_a_side_drawn_twice_in_one_stirrup_is_one_leg() -> None:
+    """A closed stirrup that goes on over its first side again."""
+    ring = [(110, 560), (110, 40), (-110, 40), (-110, 560), (110, 560), (110, 40), (0, 40)]
+    found = read_stirrups(*(Curve(tuple((x, float(y), float(z)) for y, z in ring)) for x in PLACES))
+    assert [zone.legs for zone in found.stirrups] == [2]
+
+
+def test_a_leg_drawn_through_that_of_another_stirrup_counts_once() -> None:
+    found = read_stirrups(*at(list(PLACES)), *(cross_tie(x, 107.0) for x in PLACES))
+    assert [zone.legs for zone in found.stirrups] == [2]
+    assert "modelled twice" in found.remarks
+
+
+# stirrups that hold the bars of neither face, or of one
+
+
+def with_both_chords(*curves: Curve, top: float = 540.0, bar: float = 20.0) -> Found:
+    model = ModelWithBars()
+    beam = model.beam()
+    model.bars(beam, straight(40, 5960, 0, 60), straight(40, 5960, 0, top), diameter=bar)
+    model.bars(beam, *curves, diameter=10.0)
+    return model.read(beam)
+
+
+@pytest.mark.parametrize(
+    ("bottom", "top"), [(145.0, 460.0), (45.0, 460.0), (145.0, 555.0), (91.0, 555.0), (45.0, 509.0)]
+)
+def test_stirrups_that_leave_bars_out_do_not_count(bottom: float, top: float) -> None:
+    """Held where the centre line is within 1.5 diameters, 30 mm, of the bars at 60 and 540."""
+    found = with_both_chords(*(closed_stirrup(x, 110.0, bottom, top) for x in PLACES))
+    assert found.stirrups == ()
+    assert "does not run from the outermost bars" in found.remarks
+    kinds = [s.kind for s in found.source("bars").remarks if "outermost" in s.text]
+    assert kinds == ["doubt"]
+
+
+@pytest.mark.parametrize(("bottom", "top"), [(45.0, 555.0), (89.0, 511.0), (60.0, 540.0)])
+def test_stirrups_that_hold_the_bars_count(bottom: float, top: float) -> None:
+    found = with_both_chords(*(closed_stirrup(x, 110.0, bottom, top) for x in PLACES))
+    assert [zone.legs for zone in found.stirrups] == [2]
+    assert found.remarks == ""
+
+
+def test_only_stirrups_that_hold_the_bars_count_beside_others() -> None:
+    outer = [closed_stirrup(x, 110.0, 45.0, 555.0) for x in PLACES]
+    inner = [closed_stirrup(x, 60.0, 145.0, 460.0) for x in PLACES]
+    found = with_both_chords(*outer, *inner)
+    assert [zone.legs for zone in found.stirrups] == [2]
+    assert "does not run from the outermost bars" in found.remarks
+
+
+def test_a_short_hoop_does_not_add_to_two_that_lap() -> None:
+    below = [open_stirrup(x, 400.0, 85.0) for x in PLACES]
+    above = [Curve(tuple((x, y, 600.0 - z) for x, y, z in c.points), c.arcs) for c in below]
+    inner = [closed_stirrup(x, 60.0, 145.0, 460.0) for x in PLACES]
+    found = with_both_chords(*below, *above, *inner)
+    assert [zone.legs for zone in found.stirrups] == [2]
+
+
+def test_where_a_face_has_no_bars_stirrups_reach_near_its_surface() -> None:
+    """0.15 of 600 mm: the outside 90 mm from the top at most."""
+    for top, counted in ((507.0, True), (503.0, False)):
+        found = read_stirrups(*(closed_stirrup(x, 110.0, 45.0, top) for x in PLACES))
+        assert bool(found.stirrups) is counted
+
+
+def test_the_bars_that_count_are_those_at_the_stirrup() -> None:
+    """Top bars at 560 end at 1000; from there on two at 520 are the outermost."""
+    model = ModelWithBars()
+    beam = model.beam()
+    bars = [straight(40, 5960, 0, 60), straight(40, 5960, 0, 520), straight(40, 1000, 50, 570)]
+    model.bars(beam, *bars, diameter=20.0)
+    places = [100.0 + 200.0 * k for k in range(20)]
+    model.bars(beam, *(closed_stirrup(x, 110.0, 45.0, 535.0) for x in places), diameter=10.0)
+    assert spans(model.read(beam)) == [pytest.approx((1000.0, 4000.0, 200.0))]
+
+
 @settings(max_examples=300, deadline=None)
 @given(
     st.lists(st.tuples(st.floats(20.0, 900.0), st.sampled_from([2, 4])), min_size=2, max_size=25),

@@ -15,6 +15,7 @@ from ifccheck.ifc.bar_pieces import count_by_row
 from ifccheck.ifc.bar_rows import BarPlaces, Rows
 from ifccheck.ifc.bars import ALONG, LEAST_RUN, LONGEST_CHORD, find_runs
 from ifccheck.ifc.measured import Measured, measure
+from ifccheck.ifc.stirrup_legs import Legs
 from ifccheck.ifc.stirrup_sets import Ties, find_ties, lies_square
 from ifccheck.ifc.stirrup_zones import stirrups_by_zone
 
@@ -36,6 +37,17 @@ class Physical:
     stirrups: Mapping[int, tuple[Stirrups, ...]]
 
 
+@dataclass(frozen=True, slots=True)
+class Tied:
+    """Rows that lie square to their beams (T)."""
+
+    rows: Rows
+    stands_for: Ints
+    """Row, of all, that each differs from by its place along the beam alone."""
+    shift: Floats
+    """How far beyond that it lies [mm]."""
+
+
 def reduce_bars(places: BarPlaces, rows: Rows, findings: Findings) -> Physical:
     """Reduce strands to longitudinal bars and stirrups; what is left out goes to the findings."""
     if not len(rows.strand):
@@ -46,8 +58,8 @@ def reduce_bars(places: BarPlaces, rows: Rows, findings: Findings) -> Physical:
     square[shapes] = lies_square(places.centre_lines(rows.take(shapes)))
     square = square[stands_for]
     bars = _along(measure(places, rows.take(~square), findings))
-    stirrups = _across(places, rows.take(square), stands_for[square], shift[square], rows, findings)
-    return Physical(bars, stirrups)
+    tied = Tied(rows.take(square), stands_for[square], shift[square])
+    return Physical(bars, _across(places, tied, rows, findings, bars))
 
 
 def _along(model: Measured) -> dict[int, tuple[Bars, ...]]:
@@ -65,31 +77,41 @@ def _along(model: Measured) -> dict[int, tuple[Bars, ...]]:
 
 
 def _across(
-    places: BarPlaces, tied: Rows, stands_for: Ints, shift: Floats, rows: Rows, findings: Findings
+    places: BarPlaces,
+    tied: Tied,
+    rows: Rows,
+    findings: Findings,
+    bars: Mapping[int, tuple[Bars, ...]],
 ) -> dict[int, tuple[Stirrups, ...]]:
     """Bars that lie square to their beams; of those alike only one is measured."""
-    if not len(tied.strand):
+    if not len(tied.shift):
         return {}
-    shapes, shape = np.unique(stands_for, return_inverse=True)
+    shapes, shape = np.unique(tied.stands_for, return_inverse=True)
     model = measure(places, rows.take(shapes), findings)
-    of_shapes = _find_ties(model)
+    of_shapes, legs = _find_ties(model)
     outside = _outside(model, anywhere=True)[shape]
     ties = replace(of_shapes.take(shape), row=np.arange(len(shape)))
-    ties = replace(ties, x=ties.x + shift)
-    model = replace(model, rows=tied, bar=places.table.bar[tied.strand])
-    length = places.frames.length[tied.beam]
+    ties = replace(ties, x=ties.x + tied.shift)
+    model = replace(model, rows=tied.rows, bar=places.table.bar[tied.rows.strand])
+    counted = _judge_legs(model, ties)
+    model.reason(np.flatnonzero(outside & counted).tolist(), OUTSIDE)
+    _judge_data(model, counted)
+    return stirrups_by_zone(model, ties.take(counted), legs, bars)
+
+
+def _judge_legs(model: Measured, ties: Ties) -> Bools:
+    """Tell of bars that lie square but are no stirrups of the beam; which are (T)."""
+    length = model.places.frames.length[model.rows.beam]
     beyond = (ties.x < -END_TOLERANCE) | (ties.x > length + END_TOLERANCE)
     counted = (ties.legs[:, 1] > 0) & ~beyond
     model.remark(np.flatnonzero(beyond).tolist(), "lies beyond the end of the beam, not counted")
     flat = ~beyond & ~counted
     model.remark(np.flatnonzero(flat).tolist(), "no leg crosses the height, not counted in shear")
     _judge_roles(model, counted, MAIN_ROLES, "a main bar by its role, but lies square to the beam")
-    model.reason(np.flatnonzero(outside & counted).tolist(), OUTSIDE)
-    _judge_data(model, counted)
-    return stirrups_by_zone(model, ties.take(counted))
+    return np.asarray(counted)
 
 
-def _find_ties(model: Measured) -> Ties:
+def _find_ties(model: Measured) -> tuple[Ties, Legs]:
     middle = (model.lines.lowest()[:, 0] + model.lines.highest()[:, 0]) / 2.0
     bounds = model.places.frames.bounds_at(model.rows.beam, middle)
     height = bounds[:, 3] - bounds[:, 2]

@@ -10,16 +10,14 @@ import numpy as np
 
 from ifccheck.ifc.bar_paths import Bools, Floats, Ints
 from ifccheck.ifc.bar_pieces import CentreLines, Pieces, count_by_row
-from ifccheck.ifc.bar_samples import offsets, others, spread
+from ifccheck.ifc.bar_samples import offsets, spread
+from ifccheck.ifc.stirrup_legs import Legs, find_legs
 
 SQUARE_DIAMETERS, SQUARE_SLOPE = 3.0, 0.1
 """A stirrup reaches along the beam by no more than this many diameters, or this part of its
 extent across."""
 UPRIGHT = math.cos(math.radians(20.0))
 """Cosine of the angle to the vertical within which a piece is a leg."""
-LEVELS = (0.25, 0.5, 0.75)
-"""Heights in the section at which legs are counted; the least number counts, so that legs which
-only lap at one height are not counted twice."""
 MEETING, HOOKED_MEETING = 2.0, 8.0
 """A stirrup is closed where its ends, or the bends of its end hooks, are within this many
 diameters."""
@@ -30,8 +28,6 @@ SAME_SPACING = 1.05
 """Ratio of spacings up to which gaps make one zone."""
 SAME_STEEL = 0.01
 """Relative step of areas within which two places hold the same steel."""
-DUPLICATE = 1.0
-"""Stirrups of which nothing differs by more than this [mm] are one that is modelled twice."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -47,6 +43,11 @@ class Ties:
     legs: Ints
     """Legs that cross each of ``LEVELS`` (T, 3)."""
     closed: Bools
+    shape: Ints
+    """Which of the bars that were measured it is like."""
+    soffit: Floats
+    top: Floats
+    """Of the section [mm]."""
 
     def take(self, kept: Ints | Bools) -> Ties:
         """Some of the ties; rows may repeat."""
@@ -57,6 +58,9 @@ class Ties:
             self.high[kept],
             self.legs[kept],
             self.closed[kept],
+            self.shape[kept],
+            self.soffit[kept],
+            self.top[kept],
         )
 
 
@@ -68,20 +72,29 @@ def lies_square(lines: CentreLines) -> Bools:
     return np.asarray((extent[:, 0] <= allowed) & (across > extent[:, 0]))
 
 
-def find_ties(lines: CentreLines, pieces: Pieces, soffit: Floats, height: Floats) -> Ties:
-    """Count the legs of bars that lie square; soffit and height of the section at each (R)."""
+def find_ties(
+    lines: CentreLines, pieces: Pieces, soffit: Floats, height: Floats
+) -> tuple[Ties, Legs]:
+    """Find the legs of bars that lie square; soffit and height of the section at each (R)."""
     closed = is_closed(lines, pieces)
     anchored = closed[pieces.row] | ((pieces.neighbour(-1) >= 0) & (pieces.neighbour(1) >= 0))
     upright = pieces.straight & (np.abs(pieces.direction[:, 2]) >= UPRIGHT) & anchored
     low, high = lines.lowest(), lines.highest()
-    legs = np.empty((lines.count, len(LEVELS)), dtype=np.intp)
-    for column, part in enumerate(LEVELS):
-        level = (soffit + part * height)[pieces.row]
-        crossing = (pieces.start[:, 2] < level) != (pieces.end[:, 2] < level)
-        counted = crossing & upright if part == 0.5 else crossing
-        legs[:, column] = count_by_row(pieces.row, counted, lines.count)
     middle = (low[:, 0] + high[:, 0]) / 2.0
-    return Ties(np.arange(lines.count), middle, low[:, 1:], high[:, 1:], legs, closed)
+    legs = find_legs(pieces, upright, middle, soffit, height)
+    row = np.arange(lines.count)
+    ties = Ties(
+        row=row,
+        x=middle,
+        low=low[:, 1:],
+        high=high[:, 1:],
+        legs=legs.count(lines.count),
+        closed=closed,
+        shape=row,
+        soffit=soffit,
+        top=soffit + height,
+    )
+    return ties, legs
 
 
 def is_closed(lines: CentreLines, pieces: Pieces) -> Bools:
@@ -193,17 +206,11 @@ class Zone:
 
 
 def gather_places(
-    ties: Ties, beam: Ints, diameter: Floats, area: Floats, grade: Ints
-) -> tuple[Places, Ints]:
-    """Put stirrups at one place of a beam together; arrays are one row per tie.
-
-    Returns the places, and the ties that are left out as modelled twice.
-    """
-    place = _same_place(ties, beam, diameter)
-    twice = _duplicates(ties, place)
-    kept = others(len(place), twice)
+    ties: Ties, place: Ints, beam: Ints, diameter: Floats, area: Floats, grade: Ints
+) -> Places:
+    """Put stirrups at one place of a beam together; arrays are one row per tie."""
     width = ties.high[:, 0] - ties.low[:, 0]
-    order = kept[np.lexsort((width[kept], place[kept]))]
+    order = np.lexsort((width, place))
     first = np.flatnonzero(np.diff(place[order], prepend=-1))
     ends = np.concatenate((first, [len(order)]))
     thick, grades, outside = diameter[order], grade[order], diameter[order] / 2.0
@@ -211,7 +218,7 @@ def gather_places(
     least_grade = np.minimum.reduceat(grades, first)
     one_grade = least_grade == np.maximum.reduceat(grades, first)
     reach = np.maximum(high[:, 0], -low[:, 0]) + outside
-    places = Places(
+    return Places(
         beam=beam[order[first]],
         x=np.add.reduceat(ties.x[order], first) / np.diff(ends),
         legs=np.add.reduceat(legs, first).min(axis=1),
@@ -225,10 +232,9 @@ def gather_places(
         ties=ties.row[order],
         first_tie=ends,
     )
-    return places, twice
 
 
-def _same_place(ties: Ties, beam: Ints, diameter: Floats) -> Ints:
+def same_place(ties: Ties, beam: Ints, diameter: Floats) -> Ints:
     """Number the places along the beams, in order; stirrups at one place have one number."""
     order = np.lexsort((ties.x, beam))
     near = np.maximum(SAME_PLACE, SAME_PLACE_DIAMETERS * diameter[order])
@@ -237,19 +243,6 @@ def _same_place(ties: Ties, beam: Ints, diameter: Floats) -> Ints:
     place = np.empty(len(order), dtype=np.intp)
     place[order] = np.cumsum(split)
     return place
-
-
-def _duplicates(ties: Ties, place: Ints) -> Ints:
-    """Ties of which another with all the same extents is at the same place."""
-    extents = np.column_stack((ties.x, ties.low, ties.high))
-    crowded = np.flatnonzero(np.bincount(place, minlength=1)[place] > 1)
-    order = crowded[np.argsort(place[crowded], kind="stable")]
-    twice: list[int] = []
-    for members in np.split(order, np.flatnonzero(np.diff(place[order])) + 1):
-        apart = np.abs(extents[members][:, None] - extents[members][None]).max(axis=2)
-        earlier = np.tril(apart <= DUPLICATE, -1).any(axis=1)
-        twice.extend(members[earlier].tolist())
-    return np.array(twice, dtype=np.intp)
 
 
 def zones_of_one_spacing(

@@ -2,37 +2,115 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator, Sequence
-from dataclasses import dataclass
+from collections.abc import Iterator, Mapping, Sequence
+from dataclasses import dataclass, replace
 
 import numpy as np
 
-from ifccheck.beam import Given, Stirrups
+from ifccheck.beam import Bars, Given, Stirrups
 from ifccheck.ifc.bar_paths import Bools, Floats, Ints
 from ifccheck.ifc.measured import Measured
-from ifccheck.ifc.stirrup_sets import Places, Ties, Zone, gather_places, zones_of_one_spacing
+from ifccheck.ifc.stirrup_legs import (
+    Extents,
+    Legs,
+    legs_in_one_another,
+    overlap_themselves,
+    reaches_chords,
+)
+from ifccheck.ifc.stirrup_sets import (
+    Places,
+    Ties,
+    Zone,
+    gather_places,
+    same_place,
+    zones_of_one_spacing,
+)
 
 PARTIAL = "its legs do not run through the height of the section: not counted"
+SHORT = (
+    "does not run from the outermost bars at the bottom to those at the top: "
+    "its legs do not run through the height of the section and are not counted"
+)
+TWICE = "have legs in one another, as if modelled twice: counted once"
 LONELY = "the only stirrup: not counted"
 
 
-def stirrups_by_zone(model: Measured, legged: Ties) -> dict[int, tuple[Stirrups, ...]]:
-    """Put stirrups of one spacing together, by row of the beam."""
+def stirrups_by_zone(
+    model: Measured, legged: Ties, legs: Legs, bars: Mapping[int, tuple[Bars, ...]]
+) -> dict[int, tuple[Stirrups, ...]]:
+    """Put stirrups of one spacing together, by row of the beam; ``bars`` are those they hold."""
     if not len(legged.row):
         return {}
-    strand, beam = model.rows.strand[legged.row], model.rows.beam[legged.row]
-    areas = np.array([size.area for size in model.places.table.sizes], dtype=float)
-    thick, area = model.places.diameter[strand], areas[model.places.size[strand]]
-    places, twice = gather_places(legged, beam, thick, area, model.places.grade[strand])
-    model.remark(legged.row[twice].tolist(), "modelled twice, counted once")
-    for place in np.flatnonzero(places.legs == 0).tolist():
-        model.remark(places.ties_of(place), PARTIAL)
+    thick = model.places.diameter[model.rows.strand[legged.row]]
+    reaches = reaches_chords(_extents(model, legged, thick), bars)
+    place = same_place(legged, model.rows.beam[legged.row], thick)
+    served, kept = _served(model, legged, legs, thick, reaches, place)
+    places = _gathered(model, served.take(kept), place[kept], thick[kept])
+    _tell_left_out(model, places, served.legs.min(axis=1) > 0, legged.row, reaches)
     found: dict[int, list[Stirrups]] = {beam: [] for beam in np.unique(places.beam).tolist()}
     whole = places.take(np.flatnonzero(places.legs > 0))
     zones = list(_zones(model, whole))
     for zone, stirrups in zip(zones, _all_stirrups(model, whole, zones), strict=True):
         found[int(whole.beam[zone.first])].append(stirrups)
     return {beam: tuple(stirrups) for beam, stirrups in found.items()}
+
+
+def _extents(model: Measured, ties: Ties, diameter: Floats) -> Extents:
+    return Extents(
+        beam=model.rows.beam[ties.row],
+        x=ties.x,
+        low=ties.low[:, 1],
+        high=ties.high[:, 1],
+        radius=diameter / 2.0,
+        soffit=ties.soffit,
+        top=ties.top,
+    )
+
+
+def _served(
+    model: Measured, ties: Ties, legs: Legs, diameter: Floats, reaches: Bools, place: Ints
+) -> tuple[Ties, Ints]:
+    """Ties with the legs that count at each level: those of ties that reach the bars there, and
+    of legs in one another one. Also returns which ties have any."""
+    serves = np.column_stack([reaches[:, 0], np.ones(len(reaches), dtype=bool), reaches[:, 1]])
+    crowded = np.bincount(place)[place] > 1
+    thick = np.zeros(int(ties.shape.max()) + 1)
+    thick[ties.shape] = diameter
+    known = legs.take(np.flatnonzero(legs.shape < len(thick)))
+    looked = np.flatnonzero(crowded | overlap_themselves(known, thick)[ties.shape])
+    doubled = legs_in_one_another(
+        legs, ties.shape[looked], ties.x[looked], diameter[looked], place[looked], serves[looked]
+    )
+    counts = ties.legs.copy()
+    counts[looked] -= doubled.counts
+    for pair in looked[doubled.pairs].tolist():
+        model.remark(ties.row[pair].tolist(), TWICE)
+    left_out = np.where(serves, counts, 0).max(axis=1) == 0
+    left_out &= np.where(serves, ties.legs, 0).max(axis=1) > 0
+    return replace(ties, legs=np.where(serves, counts, 0)), np.flatnonzero(~left_out)
+
+
+def _gathered(model: Measured, ties: Ties, place: Ints, diameter: Floats) -> Places:
+    strand = model.rows.strand[ties.row]
+    areas = np.array([size.area for size in model.places.table.sizes], dtype=float)
+    area, grade = areas[model.places.size[strand]], model.places.grade[strand]
+    return gather_places(ties, place, model.rows.beam[ties.row], diameter, area, grade)
+
+
+def _tell_left_out(
+    model: Measured, places: Places, whole: Bools, row: Ints, reaches: Bools
+) -> None:
+    """Tell of stirrups that do not count because they stop short of the bars at a face."""
+    short = np.zeros(len(model.rows.beam), dtype=bool)
+    short[row] = ~reaches.all(axis=1)
+    counts = np.zeros(len(model.rows.beam), dtype=bool)
+    counts[row] = whole
+    of_place = np.repeat(np.arange(len(places.x)), np.diff(places.first_tie))
+    has_whole = np.bincount(of_place, counts[places.ties], len(places.x)) > 0
+    silent = short[places.ties] & (has_whole | (places.legs == 0))[of_place]
+    model.remark(places.ties[silent].tolist(), SHORT)
+    dead = (places.legs == 0)[of_place] & ~short[places.ties]
+    model.remark(places.ties[dead].tolist(), PARTIAL)
 
 
 def _zones(model: Measured, places: Places) -> Iterator[Zone]:
