@@ -233,7 +233,8 @@ class _Loads:
             parts.append(_line_load(load, frame, base, away, peak))
             base += away * BAND
         if self.more:
-            words = f"and {self.more} more line loads, in the table of loads"
+            loads = "line load" if self.more == 1 else "line loads"
+            words = f"and {self.more} more {loads}, in the table of loads"
             parts.append(label(WIDTH / 2.0, base + away * 4.0, words, "load-name"))
             base += away * 12.0
         foot = frame.bottom if self.hung else frame.top
