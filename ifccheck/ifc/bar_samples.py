@@ -56,6 +56,13 @@ def offsets(counts: Sequence[int] | Ints) -> Ints:
     return np.concatenate(([0], np.cumsum(counts, dtype=np.intp))).astype(np.intp)
 
 
+def others(count: int, taken: Ints) -> Ints:
+    """Numbers below a count without those taken."""
+    left = np.ones(count, dtype=bool)
+    left[taken] = False
+    return np.flatnonzero(left)
+
+
 def spread(counts: Ints) -> tuple[Ints, Ints]:
     """Number of the run of each entry of several runs, and its place in that run."""
     run = np.repeat(np.arange(len(counts)), counts)
