@@ -8,10 +8,15 @@ soffit and y from the middle of the outline's width.
 
 from __future__ import annotations
 
-from collections.abc import Collection
-from dataclasses import dataclass, field
+from dataclasses import dataclass
 from enum import StrEnum
 from typing import Literal
+
+from ifccheck.cases import SELF as SELF
+from ifccheck.cases import Case as Case
+from ifccheck.cases import Combination as Combination
+from ifccheck.cases import CombinationKind as CombinationKind
+from ifccheck.cases import Nature as Nature
 
 Vector = tuple[float, float, float]
 Point = tuple[float, float]
@@ -19,14 +24,9 @@ Ring = tuple[Point, ...]
 
 SourceName = Literal["schedule", "bars", "sections", "properties"]
 SupportKind = Literal["pinned", "fixed", "free"]
-Nature = Literal["permanent", "imposed", "crane", "snow", "wind"]
-CombinationKind = Literal["strength", "service"]
 LoadKind = Literal["line", "point", "moment"]
 Face = Literal["top", "bottom"]
 RemarkKind = Literal["assumption", "doubt", "note"]
-
-SELF = "self"
-"""Name of the case that self weight makes; reserved."""
 
 
 class Verdict(StrEnum):
@@ -277,6 +277,16 @@ class Member:
 
 
 @dataclass(frozen=True, slots=True)
+class Unmeasured:
+    """A beam, column or member of which the model does not tell where it is."""
+
+    step_id: int
+    ifc_class: str
+    name: str
+    storey: str
+
+
+@dataclass(frozen=True, slots=True)
 class OutOfScope:
     """A beam that is left out on positive evidence."""
 
@@ -313,6 +323,8 @@ class Model:
     """Every member with a readable box, beams included."""
     storeys: tuple[Storey, ...]
     remarks: tuple[Remark, ...] = ()
+    unmeasured: tuple[Unmeasured, ...] = ()
+    """Beams, columns and members that may rest on any beam of their storey"""
 
 
 @dataclass(frozen=True, slots=True)
@@ -367,18 +379,6 @@ class Contact:
 
 
 @dataclass(frozen=True, slots=True)
-class Case:
-    """A load case of the brief."""
-
-    name: str
-    nature: Nature
-    category: str | None = None
-    rated: bool = False
-    excludes: tuple[str, ...] = ()
-    removable: bool = False
-
-
-@dataclass(frozen=True, slots=True)
 class Load:
     """One load on one beam, vertical and positive downward, in the beam's own x.
 
@@ -398,22 +398,3 @@ class Load:
     origin: str = ""
     text: str = ""
     """What the brief says, for people: "60 kN at 2.1 m"."""
-
-
-@dataclass(frozen=True, slots=True)
-class Combination:
-    """Factors on the cases of a run: unfavourable and favourable, by case name."""
-
-    name: str
-    kind: CombinationKind
-    factors: dict[str, tuple[float, float]] = field(hash=False)
-    terms: tuple[tuple[Nature, str], ...] = ()
-    """The name's terms by nature, where it is made of such: ("imposed", "1.5L")"""
-
-    def label(self, natures: Collection[Nature]) -> str:
-        """The name without the terms of natures that do not act."""
-        whole = " + ".join(text for _, text in self.terms)
-        if not self.terms or not self.name.startswith(whole):
-            return self.name
-        acting = " + ".join(text for nature, text in self.terms if nature in natures)
-        return acting + self.name.removeprefix(whole)

@@ -20,6 +20,7 @@ from ifccheck.beam import (
     Remark,
     Stirrups,
     Support,
+    Unmeasured,
 )
 from ifccheck.brief.loads import loads_on_beams
 from ifccheck.brief.merging import Matches
@@ -35,7 +36,7 @@ from ifccheck.brief.statements import (
 from ifccheck.brief.supports import resolve_supports, stated_ends
 from ifccheck.detailing import choose_source, lay_out
 from ifccheck.frame.carrying import contacts_of, pressed_ends
-from ifccheck.frame.contacts import between_reactions, reactions_reason
+from ifccheck.frame.contacts import between_reactions, reactions_reason, unmeasured_reason
 from ifccheck.frame.spans import Standing, stand_alone
 from ifccheck.rating.subject import Subject, Unrated
 from ifccheck.standards import Standard
@@ -87,6 +88,7 @@ class _Sources:
     brief: Brief
     standard: Standard
     contacts: Mapping[str, Sequence[Contact]]
+    unmeasured: Sequence[Unmeasured]
     statements: Mapping[str, BeamStatement]
     materials: Mapping[str, MaterialStatement]
     defaults: MaterialStatement
@@ -103,6 +105,7 @@ def gather(model: Model, brief: Brief, matches: Matches, standard: Standard) -> 
         brief=brief,
         standard=standard,
         contacts=contacts,
+        unmeasured=model.unmeasured,
         statements=statements(brief, matches),
         materials=materials(brief, matches),
         defaults=default_materials(brief),
@@ -410,5 +413,5 @@ def _judge_loads(
             free_start=standing.span.start_support.kind == "free",
             free_end=standing.span.end_support.kind == "free",
         )
-        reason = reactions_reason(resting)
-        findings.reasons += [reason] if reason else []
+        reasons = reactions_reason(resting), unmeasured_reason(beam, sources.unmeasured)
+        findings.reasons += [reason for reason in reasons if reason]

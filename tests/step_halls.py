@@ -65,6 +65,8 @@ class Block:
     height: float
     kind: str = "IFCCOLUMN"
     material: str = "Concrete C30/37"
+    ring: Outline | None = None
+    """Its plan about that middle, if it is no rectangle."""
 
 
 def guid_of(text: str) -> str:
@@ -201,7 +203,7 @@ def _block(lines: _Lines, block: Block) -> str:
     half_x, half_y = block.size[0] / 2.0, block.size[1] / 2.0
     ring = ((-half_x, -half_y), (half_x, -half_y), (half_x, half_y), (-half_x, half_y))
     axes = lines.axes((0.0, 0.0, 0.0), (0.0, 0.0, 1.0), (1.0, 0.0, 0.0))
-    shape = lines.prism(ring, axes, block.height)
+    shape = lines.prism(block.ring or ring, axes, block.height)
     placement = lines.placement(block.at)
     guid = guid_of(f"block {block.name}")
     rest = ",$" * _FURTHER.get(block.kind, 2)

@@ -114,27 +114,77 @@ def test_box_round_several_items_and_tapered_ones() -> None:
     assert only_member(building).half == pytest.approx((600.0, 500.0, 1150.0))
 
 
-def test_members_whose_extent_is_unknown_are_counted() -> None:
+def test_a_revolved_member_has_a_rough_box() -> None:
+    """200 x 200, 1000 mm from an axis along y, turned by 1 rad: x from -100 to 1000 - 900 cos 1,
+    z from 0 to 1100 sin 1, and 300 mm more all round."""
     building = Building("IFC4")
+    axis = building.entity(
+        "IfcAxis1Placement", building.point(1000, 0, 0), building.direction((0, 1, 0))
+    )
     revolved = building.entity(
-        "IfcRevolvedAreaSolid",
-        building.rectangle(200, 200),
-        building.axes(),
-        building.entity(
-            "IfcAxis1Placement", building.point(1000, 0, 0), building.direction((0, 1, 0))
-        ),
-        1.0,
+        "IfcRevolvedAreaSolid", building.rectangle(200, 200), building.axes(), axis, 1.0
     )
     building.member("IfcColumn", revolved)
     building.member("IfcMember", revolved)
-    building.member("IfcColumn")  # has no body and is no doubt
+    model = building.read()
+    assert [member.ifc_class for member in model.members] == ["IfcColumn", "IfcMember"]
+    assert {member.doubt for member in model.members} == {"its extent is known only roughly"}
+    wide, high = 1100.0 - 900.0 * math.cos(1.0), 1100.0 * math.sin(1.0)
+    half = [wide / 2.0 + 300.0, 100.0 + 300.0, high / 2.0 + 300.0]
+    assert model.members[0].box.half == pytest.approx(half, abs=1e-6)
+    (remark,) = model.remarks
+    assert remark.kind == "doubt"
+    assert "2 members is known only roughly (1 IfcColumn, 1 IfcMember)" in remark.text
+
+
+def test_members_whose_extent_is_unknown_are_counted() -> None:
+    """A column without a body, too, may stand on any beam of its storey; a slab may not."""
+    building = Building("IFC4")
+    hollow = building.entity("IfcFacetedBrep", building.entity("IfcClosedShell", ()))
+    building.member("IfcMember", hollow)
+    building.member("IfcColumn")
+    building.member("IfcSlab")
     model = building.read()
     assert model.members == ()
+    assert sorted((each.ifc_class, each.storey) for each in model.unmeasured) == [
+        ("IfcColumn", "Level 1"),
+        ("IfcMember", "Level 1"),
+    ]
     (remark,) = model.remarks
     assert remark.kind == "doubt"
     assert remark.text.startswith(
         "the extent of 2 members cannot be read (1 IfcColumn, 1 IfcMember)"
     )
+
+
+@pytest.mark.parametrize("schema", ["IFC2X3", "IFC4"])
+def test_plan_of_an_upright_member_that_does_not_fill_its_box(schema: str) -> None:
+    building = Building(schema)
+    corners = [(0, 0), (4000, 0), (4000, 200), (200, 200), (200, 4000), (0, 4000)]
+    solid = building.extrusion(building.outline(*corners), 3000.0)
+    placement = building.placement((100, 200, 300), (0, 0, 1), (0.6, 0.8, 0))
+    building.member("IfcWall", solid, placement=placement)
+    building.member("IfcWall", building.extrusion(building.rectangle(4000, 200), 3000.0))
+    bent, straight = building.read().members
+    turned = [(100 + 0.6 * x - 0.8 * y, 200 + 0.8 * x + 0.6 * y) for x, y in corners]
+    assert np.array(sorted(bent.plan)) == pytest.approx(np.array(sorted(turned)))
+    assert (bent.doubt, straight.plan, straight.doubt) == ("", (), "")
+
+
+@pytest.mark.parametrize(("turn", "doubted"), [(0.0, False), (math.pi / 4.0, True)])
+def test_a_wall_of_facets_across_its_box_is_doubtful(turn: float, doubted: bool) -> None:
+    """4000 x 200 at 45 degrees: its box is (4000 + 200) / sqrt 2 = 2970 mm thick."""
+    c, s = math.cos(turn), math.sin(turn)
+    corners = [
+        (c * x - s * y, s * x + c * y, z)
+        for x in (0.0, 4000.0) for y in (0.0, 200.0) for z in (0.0, 3000.0)
+    ]  # fmt: skip
+    building = Building("IFC4")
+    points = building.entity("IfcCartesianPointList3D", corners)
+    faces = building.entity("IfcTriangulatedFaceSet", points, None, None, [(1, 2, 3)], None)
+    building.member("IfcWall", faces)
+    (wall,) = building.read().members
+    assert ("fills too little of the box" in wall.doubt) is doubted
 
 
 def test_what_cannot_touch_a_beam_is_left_out() -> None:

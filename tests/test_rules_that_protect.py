@@ -186,6 +186,104 @@ def in_parts(model: str, mark: str) -> str:
     )
 
 
+def representation_of(model: str, mark: str) -> tuple[str, str]:
+    """The whole line of a beam's representation, and the number of its body."""
+    number = number_of(model, f"IFCBEAM('{guid_of(f'beam {mark}')}'")
+    shape = re.search(rf"#{number}=IFCBEAM\(.*?,#\d+,#(\d+),\$,\.BEAM\.\);", model)
+    assert shape
+    held = re.search(rf"#{shape[1]}=IFCPRODUCTDEFINITIONSHAPE\(\$,\$,\(#(\d+)\)\);", model)
+    assert held
+    line = re.search(rf"#{held[1]}=IFCSHAPEREPRESENTATION\(.*?\(#(\d+)\)\);", model)
+    assert line
+    return line[0], line[1]
+
+
+def revolved(model: str, mark: str) -> str:
+    """A beam bent in plan to a radius of 5 m, over 0.8 rad."""
+    _, solid = representation_of(model, mark)
+    line = re.search(rf"#{solid}=IFCEXTRUDEDAREASOLID\((#\d+),(#\d+),.*?\);", model)
+    assert line
+    return with_lines(
+        changed(model, line[0], f"#{solid}=IFCREVOLVEDAREASOLID({line[1]},{line[2]},#9003,0.8);"),
+        "IFCCARTESIANPOINT((5000.0,0.0,0.0))",
+        "IFCDIRECTION((0.0,1.0,0.0))",
+        "IFCAXIS1PLACEMENT(#9001,#9002)",
+    )
+
+
+def swept(model: str, mark: str) -> str:
+    """A beam swept along a polyline."""
+    _, solid = representation_of(model, mark)
+    line = re.search(rf"#{solid}=IFCEXTRUDEDAREASOLID\((#\d+),.*?\);", model)
+    assert line
+    body = f"IFCFIXEDREFERENCESWEPTAREASOLID({line[1]},$,#9003,$,$,#9004)"
+    return with_lines(
+        changed(model, line[0], f"#{solid}={body};"),
+        "IFCCARTESIANPOINT((0.0,0.0,0.0))",
+        "IFCCARTESIANPOINT((4000.0,0.0,0.0))",
+        "IFCPOLYLINE((#9001,#9002))",
+        "IFCDIRECTION((0.0,0.0,1.0))",
+    )
+
+
+def axis_alone(model: str, mark: str, *curve: str) -> str:
+    """A beam of which only the axis is modelled, as #9003."""
+    line, solid = representation_of(model, mark)
+    axis = line.replace("'Body','SweptSolid'", "'Axis','Curve3D'").replace(f"#{solid}", "#9003")
+    return with_lines(
+        changed(model, line, axis),
+        "IFCCARTESIANPOINT((0.0,0.0,100.0))",
+        "IFCCARTESIANPOINT((4000.0,0.0,100.0))",
+        *(curve or ("IFCPOLYLINE((#9001,#9002))",)),
+    )
+
+
+def without_extent(model: str, mark: str) -> str:
+    """A beam whose axis is a line without ends."""
+    line = "IFCLINE(#9001,#9004)", "IFCVECTOR(#9005,1.0)", "IFCDIRECTION((1.0,0.0,0.0))"
+    return axis_alone(model, mark, *line)
+
+
+UNTRACED = hall(Beam(), ON_TOP, Beam("B-2", at=(0.0, 9000.0, 3000.0)))
+
+
+@pytest.mark.parametrize("shape", [revolved, swept, axis_alone])
+def test_what_rests_on_it_with_a_body_that_is_not_traced(tmp_path: Path, shape: Any) -> None:
+    """Its box is rough, and too large rather than too small; where it is not, nothing rests."""
+    report = report_on(tmp_path, shape(UNTRACED, "R-1"))
+    check_not_rated(rating_of(report), "reactions not included: R-1")
+    check_adequate(rating_of(report, "B-2"))
+    assert any("known only roughly (1 IfcBeam)" in r.text for r in report.model.remarks)
+
+
+def test_what_rests_no_one_knows_where(tmp_path: Path) -> None:
+    """Then it may rest on any beam of its storey."""
+    model = without_extent(UNTRACED, "R-1")
+    report = report_on(tmp_path, model)
+    for mark in ("B-1", "B-2"):
+        check_not_rated(
+            rating_of(report, mark),
+            "reactions not included: 1 member has no readable extent (R-1)",
+        )
+    check_adequate(rated(tmp_path, model, LOAD, stated("beams", "loads_complete = true")))
+
+
+L_PLAN = ((0.0, 0.0), (4000.0, 0.0), (4000.0, 200.0), (200.0, 200.0), (200.0, 4000.0),
+          (0.0, 4000.0))  # fmt: skip
+"""A wall round a corner, seen from above, with legs of 4 m"""
+
+
+def test_a_wall_round_a_corner_holds_where_it_is_and_not_where_its_box_is(tmp_path: Path) -> None:
+    """In the open quarter of its box the beam's end hangs in the air."""
+    far = post("C-2", 6150.0, 0.0)
+    inside = Block("W-1", (-1500.0, -1500.0, 0.0), (1, 1), 6000, kind="IFCWALL", ring=L_PLAN)
+    model = hall(loose("B-1", 0.0), others=[far, inside])
+    check_not_rated(rated(tmp_path, model), "supports unknown: its start touches no member")
+    leg = Block("W-1", (-200.0, -1500.0, 0.0), (1, 1), 6000, kind="IFCWALL", ring=L_PLAN)
+    along = hall(loose("B-1", 0.0), others=[far, leg])
+    check_adequate(rated(tmp_path, along))
+
+
 @pytest.mark.parametrize("kind", ["IFCMEMBER", "IFCBEAM"])
 def test_what_hangs_below_it_between_its_ends(tmp_path: Path, kind: str) -> None:
     """It may pull or bear: the supports are not known, and once they are, its reaction is not."""

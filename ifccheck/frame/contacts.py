@@ -16,7 +16,7 @@ from typing import Literal
 
 import numpy as np
 
-from ifccheck.beam import Beam, Contact, Member, Reason
+from ifccheck.beam import Beam, Contact, Member, Reason, Unmeasured
 from ifccheck.frame.boxes import (
     Bools,
     Boxes,
@@ -384,6 +384,22 @@ def reactions_reason(contacts: Sequence[Contact]) -> Reason | None:
     named = ", ".join(others[:_NAMED])
     rest = f" and {len(others) - _NAMED} more" if len(others) > _NAMED else ""
     return Reason(f"reactions not included: {named}{rest}", blocking=False)
+
+
+def unmeasured_reason(beam: Beam, unmeasured: Sequence[Unmeasured]) -> Reason | None:
+    """Why a beam is not rated where members may rest on it that no one knows the place of."""
+    near = [
+        each
+        for each in unmeasured
+        if each.step_id != beam.step_id and (not beam.storey or each.storey in ("", beam.storey))
+    ]
+    if not near:
+        return None
+    names = sorted({each.name or f"{each.ifc_class} #{each.step_id}" for each in near})
+    rest = f" and {len(names) - _NAMED} more" if len(names) > _NAMED else ""
+    count = "1 member has" if len(near) == 1 else f"{len(near)} members have"
+    text = f"{count} no readable extent ({', '.join(names[:_NAMED])}{rest})"
+    return Reason(f"reactions not included: {text}", blocking=False)
 
 
 def _told(contact: Contact) -> str:

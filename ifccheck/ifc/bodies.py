@@ -99,7 +99,7 @@ def body_items(context: Context, product: Entity) -> list[Placed]:
     if representation is None:
         return []
     whole = context.placements.matrix(product)
-    return list(_resolved(context, representation, whole, depth=0))
+    return list(resolved_items(context, representation, whole))
 
 
 def body_representation(shape: Entity) -> Entity | None:
@@ -114,9 +114,10 @@ def body_representation(shape: Entity) -> Entity | None:
     return solid
 
 
-def _resolved(
-    context: Context, representation: Entity, matrix: Matrix, depth: int
+def resolved_items(
+    context: Context, representation: Entity, matrix: Matrix, depth: int = 0
 ) -> Iterator[Placed]:
+    """Return the items of a representation, mapped ones resolved."""
     if depth > DEEPEST:
         raise UnreadableError("mapped items refer to each other")
     for item in representation.get_argument(3) or ():
@@ -127,7 +128,7 @@ def _resolved(
         mapping = context.placements.operator(need(item, "MappingTarget"))
         origin = context.placements.axes(get(source, "MappingOrigin"))
         inner = need(source, "MappedRepresentation")
-        yield from _resolved(context, inner, matrix @ mapping @ origin, depth + 1)
+        yield from resolved_items(context, inner, matrix @ mapping @ origin, depth + 1)
 
 
 def read_prism(context: Context, profiles: Profiles, placed: Placed) -> Prism:

@@ -7,14 +7,15 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
-from ifccheck.beam import Box
+from ifccheck.beam import Box, Ring
 from ifccheck.ifc.bodies import BOOLEANS, Placed, Prism, body_items, extrusion
 from ifccheck.ifc.clips import Cloud, left_over, read_cut
 from ifccheck.ifc.entity import Entity, UnreadableError, get, need
 from ifccheck.ifc.placements import Matrix
 from ifccheck.ifc.points import points_of
+from ifccheck.ifc.profile_curves import signed_area
 from ifccheck.ifc.profiles import Profiles
-from ifccheck.ifc.vectors import Triple, added, combined, cross, dot, rounded
+from ifccheck.ifc.vectors import Triple, added, combined, cross, dot, rounded, unit
 
 if TYPE_CHECKING:
     from ifccheck.ifc.context import Context
@@ -26,6 +27,13 @@ FACETED = (
     "IfcFaceBasedSurfaceModel",
 )
 """Bodies that lie within the hull of the points they are made of, arcs apart."""
+
+
+FILLED = 0.98
+"""A profile that covers this part of its box fills it."""
+
+UPRIGHT = 0.9999
+"""Least z of the unit vector of what stands upright."""
 
 
 class Boxes:
@@ -54,6 +62,29 @@ class Boxes:
         if axes is None:
             axes = np.ascontiguousarray(self._context.placements.matrix(product)[:3, :3].T)
         return box_round(cloud, axes)
+
+    def plan(self, product: Entity) -> Ring | None:
+        """Return the outer ring in plan of one upright extrusion, None for any other body.
+
+        Empty where the extrusion fills its box; cuts are left out of account.
+        """
+        placed = body_items(self._context, product)
+        if len(placed) != 1:
+            return None
+        item = placed[0].item
+        while item.is_a() in BOOLEANS and get(item, "Operator") == "DIFFERENCE":
+            item = need(item, "FirstOperand")
+        if item.is_a() != "IfcExtrudedAreaSolid":
+            return None
+        prism = extrusion(self._context, self._profiles, placed[0]._replace(item=item))
+        if min(abs(prism.axes[2][2]), abs(unit(prism.along)[2])) < UPRIGHT:
+            return None
+        low_x, high_x, low_y, high_y = prism.profile.extent
+        ring = prism.profile.rings[0]
+        filled = abs(signed_area(ring.tolist())) / ((high_x - low_x) * (high_y - low_y))
+        if filled > FILLED:
+            return ()
+        return tuple((float(x), float(y)) for x, y, _ in prism.placed(ring))
 
     def _item(self, placed: Placed) -> tuple[Cloud, Matrix | None]:
         """Corners of an item in the building, and its own axes where it has some."""

@@ -3,10 +3,11 @@
 from __future__ import annotations
 
 from collections import Counter
-from collections.abc import Iterator, Mapping
+from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass
+from typing import NamedTuple
 
-from ifccheck.beam import Box, Member, Remark
+from ifccheck.beam import Box, Member, Remark, Ring, Unmeasured
 from ifccheck.ifc.boxes import Boxes
 from ifccheck.ifc.context import Context
 from ifccheck.ifc.entity import (
@@ -19,6 +20,8 @@ from ifccheck.ifc.entity import (
     UnreadableError,
     text_at,
 )
+from ifccheck.ifc.profiles import Profiles
+from ifccheck.ifc.rough_boxes import GROWN, ROUGH, rough_box
 from ifccheck.ifc.storeys import Storeys
 from ifccheck.ifc.vocabulary import CONCRETE, families_named
 
@@ -41,40 +44,107 @@ NOT_SOLID = (
 """Parts that are no body of a member by themselves: its bars, fasteners, openings."""
 
 
+FRAMING = ("IfcBeam", "IfcColumn", "IfcMember")
+"""Members that may rest on a beam wherever they are."""
+
+ROUGHLY = (
+    *FRAMING, "IfcWall", "IfcFooting", "IfcPile", "IfcStairFlight", "IfcRampFlight",
+    "IfcBuildingElementProxy",
+)  # fmt: skip
+"""Members that a rough box is better for than none."""
+
+THICK = 600.0
+"""A wall with a box thicker than this is bent, or lies across the axes of its box, unless it is
+known to fill it [mm]."""
+
+UNFILLED = "its body fills too little of the box round it to tell where it carries"
+
+
 @dataclass(frozen=True, slots=True)
 class Members:
     """The members with a readable box, and what is doubtful of the rest."""
 
     members: tuple[Member, ...]
+    unmeasured: tuple[Unmeasured, ...]
     remarks: tuple[Remark, ...]
 
 
+class _Extent(NamedTuple):
+    box: Box
+    plan: Ring = ()
+    doubt: str = ""
+
+
 def read_members(
-    context: Context, boxes: Boxes, storeys: Storeys, known: Mapping[int, Box]
+    context: Context, profiles: Profiles, storeys: Storeys, known: Mapping[int, Box]
 ) -> Members:
     """Return every member with its box; ``known`` are boxes that were already found."""
+    boxes = Boxes(context, profiles)
     members: list[Member] = []
+    unmeasured: list[Unmeasured] = []
     unread: Counter[str] = Counter()
+    rough: Counter[str] = Counter()
     for entity in _entities(context):
         step_id = entity.id()
-        try:
-            found = _boxes(context, boxes, entity, known.get(step_id))
-        except (UnreadableError, *ILL_TYPED):
+        name = text_at(entity, NAME) or text_at(entity, TAG)
+        found = _extents(context, boxes, entity, known.get(step_id))
+        if not found and _is_any(entity, ROUGHLY):
+            found = _rough(context, profiles, entity)
+            rough[entity.is_a()] += bool(found)
+        if found is None:
             unread[entity.is_a()] += 1
-            continue
+        if not found and _is_any(entity, FRAMING):
+            storey = storeys.name_of(step_id)
+            unmeasured.append(Unmeasured(step_id, entity.is_a(), name, storey))
         members += [
             Member(
                 step_id=step_id,
                 guid=text_at(entity, GLOBAL_ID),
                 ifc_class=entity.is_a(),
-                name=text_at(entity, NAME) or text_at(entity, TAG),
+                name=name,
                 storey=storeys.name_of(step_id),
-                box=box,
-                doubt=_use_doubt(entity),
+                box=extent.box,
+                plan=extent.plan,
+                doubt=_use_doubt(entity) or extent.doubt,
             )
-            for box in found
+            for extent in found or ()
         ]
-    return Members(tuple(members), _unread(unread))
+    return Members(tuple(members), tuple(unmeasured), (*_unread(unread), *_roughly(rough)))
+
+
+def _is_any(entity: Entity, classes: Sequence[str]) -> bool:
+    return any(entity.is_a(name) for name in classes)
+
+
+def _extents(
+    context: Context, boxes: Boxes, entity: Entity, known: Box | None
+) -> list[_Extent] | None:
+    """Where a member is; nothing where it has no body, None where it cannot be read."""
+    try:
+        found = _boxes(context, boxes, entity, known)
+        if known is not None or not _is_any(entity, ("IfcWall", "IfcFooting", "IfcColumn")):
+            return [_Extent(box) for box in found]
+        plan = boxes.plan(entity)
+    except (UnreadableError, *ILL_TYPED):
+        return None
+    unsure = plan is None and entity.is_a("IfcWall")
+    return [
+        _Extent(box, plan or (), UNFILLED if unsure and _thickness(box) > THICK else "")
+        for box in found
+    ]
+
+
+def _thickness(box: Box) -> float:
+    """The lesser of the two extents of a box that are nearest to level [mm]."""
+    steep = max(range(3), key=lambda row: abs(box.axes[row][2]))
+    return 2.0 * min(half for row, half in enumerate(box.half) if row != steep)
+
+
+def _rough(context: Context, profiles: Profiles, entity: Entity) -> list[_Extent] | None:
+    try:
+        return [_Extent(rough_box(context, profiles, entity), doubt=ROUGH)]
+    except (UnreadableError, *ILL_TYPED):
+        return None
 
 
 def _use_doubt(entity: Entity) -> str:
@@ -126,5 +196,16 @@ def _unread(unread: Counter[str]) -> tuple[Remark, ...]:
     text = (
         f"the extent of {sum(unread.values())} members cannot be read ({kinds}): "
         "contacts with them are not seen"
+    )
+    return (Remark(None, "geometry", text, "doubt"),)
+
+
+def _roughly(rough: Counter[str]) -> tuple[Remark, ...]:
+    if not rough.total():
+        return ()
+    kinds = ", ".join(f"{count} {name}" for name, count in sorted(rough.items()) if count)
+    text = (
+        f"the extent of {rough.total()} members is known only roughly ({kinds}): boxes round "
+        f"their points and {GROWN:g} mm more may load beams, and hold none"
     )
     return (Remark(None, "geometry", text, "doubt"),)

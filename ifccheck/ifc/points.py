@@ -32,6 +32,32 @@ def points_of(context: Context, item: Entity) -> Cloud:
     return cloud
 
 
+def plane_points_of(context: Context, item: Entity) -> Cloud:
+    """Return the points under a curve in space or in the plane of x and y [mm].
+
+    Raises UnreadableError where there is none, or where its ends are no points.
+    """
+    points: Coordinates = []
+    for entity in context.file.traverse(item):
+        kind = entity.is_a()
+        if kind in ("IfcLine", "IfcTrimmedCurve") and not _trimmed_at_points(item):
+            raise UnreadableError("extent of a line without end points")
+        if kind == "IfcCartesianPoint":
+            points.append((*entity[0], 0.0)[:3])
+        elif kind in ("IfcCartesianPointList2D", "IfcCartesianPointList3D"):
+            points += [(*row, 0.0)[:3] for row in entity[0]]
+    cloud = np.array(points, dtype=float).reshape(-1, 3) * context.units.length
+    if not len(cloud) or not np.isfinite(cloud).all():
+        raise UnreadableError(f"extent of an {item.is_a()} without points")
+    return cloud
+
+
+def _trimmed_at_points(item: Entity) -> bool:
+    return item.is_a("IfcTrimmedCurve") and all(
+        any(end.is_a("IfcCartesianPoint") for end in item[number]) for number in (1, 2)
+    )
+
+
 def _point(entity: Entity) -> Coordinates:
     return [entity[0]] if len(entity[0]) == 3 else []
 

@@ -10,7 +10,6 @@ from typing import Any, Protocol
 from ifccheck.beam import Beam, Box, Model, OutOfScope, Reinforcement, Remark
 from ifccheck.errors import ModelError
 from ifccheck.ifc.beams import BeamReader, Identity
-from ifccheck.ifc.boxes import Boxes
 from ifccheck.ifc.context import BeamFrame, Context, make_context
 from ifccheck.ifc.entity import GLOBAL_ID, ILL_TYPED, Entity, text_at
 from ifccheck.ifc.lexer import EXPORT_AGAIN
@@ -80,7 +79,7 @@ def _read(opened: Opened, mapping: Mapping[str, str], statements: StepTable | No
             beams.append(found.beam)
         else:
             left_out.append(found.beam)
-    members = read_members(context, Boxes(context, profiles), storeys, known)
+    members = read_members(context, profiles, storeys, known)
     return Model(
         name=opened.name,
         file_name=opened.file_name,
@@ -91,6 +90,7 @@ def _read(opened: Opened, mapping: Mapping[str, str], statements: StepTable | No
         members=members.members,
         storeys=storeys.all,
         remarks=(*opened.remarks, *_repeats(entities), *reader.remarks, *members.remarks),
+        unmeasured=members.unmeasured,
     )
 
 
