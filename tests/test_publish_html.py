@@ -294,12 +294,14 @@ def test_reasons_that_differ_by_the_members_named_are_one_row() -> None:
         ]
     )
     assert [(group.text, group.beams) for group in groups] == [
-        ("reactions not included (each sheet says more)", ("a", "b")),
+        ("reactions not included: C-H1 (IfcColumn); T-119 (IfcBeam)", ("a", "b")),
         ("no load assigned", ("b",)),
         ("shear: the aggregate size is not given", ("c",)),
         ("shear: the legs of the stirrups are not stated (10M)", ("d",)),
         ("supports unknown: its start touches nothing", ("e",)),
     ]
+    many = reason_groups(unrated(f"{i}", f"reactions not included: C-{i}") for i in range(9))
+    assert [group.text for group in many] == ["reactions not included: C-0; C-1; C-2; and 6 more"]
     cures = [group.cure for group in groups]
     assert "loads_complete = true" in cures[0]
     assert "unloaded = true" in cures[1]

@@ -119,6 +119,10 @@ CURES = {
 """What lets a beam be rated, for reasons that the brief can settle; by the words before ":"."""
 
 
+NAMED = 3
+"""Members, or groups of them, that a reason names before the rest is counted."""
+
+
 @dataclass(frozen=True, slots=True)
 class ReasonGroup:
     """Reasons that differ only by the members that they name."""
@@ -142,7 +146,9 @@ def reason_groups(ratings: Iterable[Rating]) -> list[ReasonGroup]:
 
 
 def _reason_group(group: str, texts: Mapping[str, Sequence[str]]) -> ReasonGroup:
-    """One text stands as it is; of several, what differs is left to the sheets."""
-    text = next(iter(texts)) if len(texts) == 1 else f"{group} (each sheet says more)"
+    """Reasons of one group with the first few of the members that they name."""
+    named = [text.removeprefix(group).removeprefix(": ") for text in texts]
+    more = [f"and {len(named) - NAMED} more"] if len(named) > NAMED else []
+    told = "; ".join([*filter(None, named[:NAMED]), *more])
     beams = tuple(dict.fromkeys(key for keys in texts.values() for key in keys))
-    return ReasonGroup(text, CURES.get(group, ""), beams)
+    return ReasonGroup(f"{group}: {told}" if told else group, CURES.get(group, ""), beams)
