@@ -8,16 +8,17 @@ those of CSA A23.1 and CSA A23.3-14, from memory: 90 degrees with 12 diameters, 
 from __future__ import annotations
 
 import math
+from dataclasses import replace
 
 import ifcopenshell
 import numpy as np
 import pytest
 
-from ifccheck.beam import Anchor, Bars
+from ifccheck.beam import Anchor, Bars, Outline, Run
 from ifccheck.ifc.bar_paths import Path, path_length, rounded
 from ifccheck.ifc.bar_samples import sample, tabulate
 from ifccheck.ifc.entity import UnreadableError
-from tests.barred_beams import HEIGHT, LENGTH, Curve, ModelWithBars, bent, straight
+from tests.barred_beams import HEIGHT, LENGTH, Curve, Found, ModelWithBars, bent, straight
 
 # CSA G30.18: nominal diameter [mm] and area [mm2], published
 CSA_BARS = {
@@ -605,3 +606,89 @@ def test_twice_the_cage_of_a_long_beam_counts_once() -> None:
     area, remarks, _ = twice(*cage, *copy)
     assert area == pytest.approx(8.0 * ONE_25)
     assert remarks.count("modelled twice") == 1
+
+
+# bars in the box round a section that is no rectangle, but not in the concrete
+
+
+TEE = [(-150, 0), (150, 0), (150, 450), (600, 450), (600, 600), (-600, 600), (-600, 450)]
+TEE.append((-150, 450))
+INVERTED = [(y, 600 - z) for y, z in reversed(TEE)]
+ELL = [(-150, 0), (150, 0), (150, 450), (600, 450), (600, 600), (-150, 600)]
+
+
+def outline_reasons(outline: list[tuple[int, int]], *bars: Curve) -> tuple[str, list[str]]:
+    """Reasons of a beam, and the labels of its bars."""
+    model = ModelWithBars()
+    beam = model.beam(outline=[(float(y), float(z)) for y, z in outline])
+    model.bars(beam, *bars, diameter=25.0)
+    labels = [f"#{bar.id()}" for bar in model.file.by_type("IfcReinforcingBar")]
+    source = model.read(beam).source("bars")
+    assert all(reason.blocking for reason in source.reasons)
+    return "; ".join(reason.text for reason in source.reasons), labels
+
+
+@pytest.mark.parametrize("y", [-500.0, -400.0, 400.0, 500.0, 150.0, 145.0])
+def test_bars_beside_the_web_are_a_reason(y: float) -> None:
+    reasons, (inside, beside) = outline_reasons(
+        TEE, straight(40, 5960, 0, 60), straight(40, 5960, y, 60)
+    )
+    assert f"bar {beside}: lies outside the concrete" in reasons
+    assert inside not in reasons
+
+
+def test_bars_within_the_web_and_the_flange_are_none() -> None:
+    inside = [straight(40, 5960, y, 60) for y in (-137.5, 0.0, 137.5)]
+    flange = [straight(40, 5960, y, z) for y in (-560.0, 560.0) for z in (490.0, 560.0)]
+    assert outline_reasons(TEE, *inside, *flange)[0] == ""
+
+
+@pytest.mark.parametrize(
+    ("outline", "y", "z", "fits"),
+    [
+        (INVERTED, 400.0, 540.0, False),
+        (INVERTED, 400.0, 60.0, True),
+        (ELL, 400.0, 60.0, False),
+        (ELL, 400.0, 540.0, True),
+        (ELL, -120.0, 60.0, True),
+    ],
+)
+def test_bars_of_other_outlines(
+    outline: list[tuple[int, int]], y: float, z: float, fits: bool
+) -> None:
+    reasons, _ = outline_reasons(outline, straight(40, 5960, y, z))
+    assert ("outside the concrete" in reasons) is not fits
+
+
+def with_runs(runs: tuple[Run, ...], *bars: Curve) -> Found:
+    model = ModelWithBars()
+    beam = model.beam()
+    model.frames[beam.id()] = replace(model.frames[beam.id()], runs=runs)
+    model.bars(beam, *bars, diameter=25.0)
+    return model.read(beam)
+
+
+def box(width: float, bottom: float, top: float) -> tuple[tuple[float, float], ...]:
+    return (
+        (-width / 2, bottom),
+        (width / 2, bottom),
+        (width / 2, top),
+        (-width / 2, top),
+    )
+
+
+def test_bars_in_a_void_are_a_reason() -> None:
+    hollow = Outline((box(300, 0, 600), box(100, 200, 400)))
+    run = (Run(0.0, LENGTH, hollow),)
+    assert "outside" in with_runs(run, straight(40, 5960, 0, 300)).reasons
+    assert "outside" in with_runs(run, straight(40, 5960, 55, 300)).reasons
+    assert with_runs(run, straight(40, 5960, 0, 100), straight(40, 5960, 100, 300)).reasons == ""
+
+
+def test_a_bar_that_leaves_the_concrete_between_its_ends_is_a_reason() -> None:
+    """The middle third of the beam is less deep."""
+    deep, shallow = Outline((box(300, 0, 600),)), Outline((box(300, 200, 600),))
+    thirds = (Run(0, 2000, deep), Run(2000, 4000, shallow), Run(4000, LENGTH, deep))
+    assert "outside" in with_runs(thirds, straight(40, 5960, 0, 60)).reasons
+    short = [straight(40, 1960, 0, 60), straight(4040, 5960, 0, 60), straight(40, 5960, 0, 260)]
+    assert with_runs(thirds, *short).reasons == ""

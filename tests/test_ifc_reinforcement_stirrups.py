@@ -401,6 +401,34 @@ def test_the_bars_that_count_are_those_at_the_stirrup() -> None:
     assert spans(model.read(beam)) == [pytest.approx((1000.0, 4000.0, 200.0))]
 
 
+# legs in the box round a section that is no rectangle, but not in the concrete
+
+
+def in_a_tee(half_width: float) -> Found:
+    """Stirrups in a T of 300/1200 x 150, 600 deep."""
+    tee = [(150, 0), (150, 450), (600, 450), (600, 600)]
+    outline = [*((float(y), float(z)) for y, z in tee)]
+    outline += [(-y, z) for y, z in reversed(outline)]
+    model = ModelWithBars()
+    beam = model.beam(outline=outline)
+    model.bars(beam, straight(40, 5960, 0, 60), straight(40, 5960, 0, 540), diameter=20.0)
+    model.bars(beam, *(closed_stirrup(x, half_width, 45.0, 555.0) for x in PLACES), diameter=10.0)
+    return model.read(beam)
+
+
+@pytest.mark.parametrize("half_width", [148.0, 160.0, 400.0])
+def test_legs_beside_the_web_are_a_reason(half_width: float) -> None:
+    found = in_a_tee(half_width)
+    assert "outside the concrete" in found.reasons
+    assert all(reason.blocking for reason in found.source("bars").reasons)
+
+
+def test_legs_in_the_web_are_none() -> None:
+    found = in_a_tee(110.0)
+    assert found.reasons == ""
+    assert [zone.legs for zone in found.stirrups] == [2]
+
+
 @settings(max_examples=300, deadline=None)
 @given(
     st.lists(st.tuples(st.floats(20.0, 900.0), st.sampled_from([2, 4])), min_size=2, max_size=25),

@@ -7,12 +7,14 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from ifccheck.beam import Outline
+from ifccheck.beam import Outline, Ring
 from ifccheck.ifc.bar_paths import Bools, Floats, Ints
 from ifccheck.ifc.context import BeamFrame
 
 FAR = 1e9
 """Further [mm] than any beam is long."""
+SAME_AREA = 1e-6
+"""Part of its box that an outline may leave out and still be a rectangle."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -32,6 +34,12 @@ class BeamFrames:
     bounds: Floats
     """Least y, greatest y, least z, greatest z at the start of each run [mm] (K, 4)."""
     end_bounds: Floats
+    outlines: Sequence[Outline]
+    """At the start of each run (K)."""
+    tapers: Bools
+    """Whether each run has another outline at its end (K)."""
+    fills_box: Bools
+    """Whether the outline of each run is a rectangle (K)."""
 
     def index(self) -> dict[int, int]:
         """Row of each beam by its STEP id."""
@@ -44,11 +52,19 @@ class BeamFrames:
         same: Bools = (self.bounds[first] == self.end_bounds[first]).all(axis=1)
         return np.asarray(single & same)
 
-    def bounds_at(self, beam: Ints, x: Floats) -> Floats:
-        """The box round the outline of beams at places along them (N, 4)."""
+    def plain(self) -> Bools:
+        """Whether each beam is a rectangular prism from end to end."""
+        return np.asarray(self.prismatic() & self.fills_box[self.first_run[:-1]])
+
+    def run_at(self, beam: Ints, x: Floats) -> Ints:
+        """The run of beams at places along them."""
         keys = np.repeat(np.arange(len(self.ids)), np.diff(self.first_run)) * FAR + self.run_start
         run = np.searchsorted(keys, beam * FAR + np.clip(x, 0.0, None), side="right") - 1
-        run = np.clip(run, self.first_run[beam], self.first_run[beam + 1] - 1)
+        return np.clip(run, self.first_run[beam], self.first_run[beam + 1] - 1)
+
+    def bounds_at(self, beam: Ints, x: Floats) -> Floats:
+        """The box round the outline of beams at places along them (N, 4)."""
+        run = self.run_at(beam, x)
         length = np.maximum(self.run_end[run] - self.run_start[run], 1e-9)
         part = np.clip((x - self.run_start[run]) / length, 0.0, 1.0)[:, None]
         return np.asarray(self.bounds[run] * (1.0 - part) + self.end_bounds[run] * part)
@@ -70,6 +86,8 @@ def make_frames(hosts: Mapping[int, BeamFrame]) -> BeamFrames:
     axes = [frame.axis for frame in frames]
     runs = [run for frame in frames for run in frame.runs]
     counts = [len(frame.runs) for frame in frames]
+    outlines = [run.outline for run in runs]
+    bounds = _bounds(outlines)
     return BeamFrames(
         ids=list(hosts),
         rotation=np.array([(a.x, a.y, a.z) for a in axes], dtype=float).reshape(-1, 3, 3),
@@ -78,8 +96,11 @@ def make_frames(hosts: Mapping[int, BeamFrame]) -> BeamFrames:
         first_run=np.concatenate(([0], np.cumsum(counts))).astype(np.intp),
         run_start=np.array([run.start for run in runs], dtype=float),
         run_end=np.array([run.end for run in runs], dtype=float),
-        bounds=_bounds([run.outline for run in runs]),
+        bounds=bounds,
         end_bounds=_bounds([run.outline_end or run.outline for run in runs]),
+        outlines=outlines,
+        tapers=np.array([run.outline_end is not None for run in runs], dtype=bool),
+        fills_box=_fill_boxes(outlines, bounds),
     )
 
 
@@ -91,6 +112,23 @@ def _bounds(outlines: Sequence[Outline]) -> Floats:
             zs = [z for _, z in outline.rings[0]]
             known[id(outline)] = (min(ys), max(ys), min(zs), max(zs))
     return np.array([known[id(outline)] for outline in outlines], dtype=float).reshape(-1, 4)
+
+
+def _fill_boxes(outlines: Sequence[Outline], bounds: Floats) -> Bools:
+    """Whether outlines are rectangles along the axes of their sections."""
+    known: dict[int, float] = {}
+    for outline in outlines:
+        if id(outline) not in known:
+            known[id(outline)] = _area(outline.rings[0]) if len(outline.rings) == 1 else 0.0
+    area = np.array([known[id(outline)] for outline in outlines])
+    box = (bounds[:, 1] - bounds[:, 0]) * (bounds[:, 3] - bounds[:, 2])
+    return np.asarray(area >= box * (1.0 - SAME_AREA))
+
+
+def _area(ring: Ring) -> float:
+    """Area within a ring [mm2]."""
+    pairs = zip(ring, (*ring[1:], ring[0]), strict=True)
+    return abs(sum(y0 * z1 - y1 * z0 for (y0, z0), (y1, z1) in pairs)) / 2.0
 
 
 def part_inside(start: Floats, end: Floats, low: Floats, high: Floats) -> tuple[Floats, Floats]:

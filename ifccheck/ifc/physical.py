@@ -10,17 +10,16 @@ import numpy as np
 from ifccheck.beam import Bars, Stirrups
 from ifccheck.ifc.bar_findings import Findings
 from ifccheck.ifc.bar_groups import longitudinal_bars
+from ifccheck.ifc.bar_outlines import FIT_TOLERANCE, legs_outside, runs_outside
 from ifccheck.ifc.bar_paths import Bools, Floats, Ints
 from ifccheck.ifc.bar_pieces import count_by_row
 from ifccheck.ifc.bar_rows import BarPlaces, Rows
-from ifccheck.ifc.bars import ALONG, LEAST_RUN, LONGEST_CHORD, find_runs
+from ifccheck.ifc.bars import ALONG, LEAST_RUN, LONGEST_CHORD, Runs, find_runs
 from ifccheck.ifc.measured import Measured, measure
 from ifccheck.ifc.stirrup_legs import Legs
 from ifccheck.ifc.stirrup_sets import Ties, find_ties, lies_square
 from ifccheck.ifc.stirrup_zones import stirrups_by_zone
 
-FIT_TOLERANCE = 1.0
-"""Steel may lie outside the box round its section by this [mm]."""
 SKEWED = 0.966
 """Cosine of the angle (15 degrees) within which a bar may be meant to run along the beam."""
 END_TOLERANCE = 5.0
@@ -71,7 +70,7 @@ def _along(model: Measured) -> dict[int, tuple[Bars, ...]]:
     is_main[runs.row] = True
     _judge_others(model, is_main)
     _judge_roles(model, is_main, TIE_ROLES, "a stirrup by its role, but runs along the beam")
-    model.reason(np.flatnonzero(_outside(model) & is_main).tolist(), OUTSIDE)
+    model.reason(np.flatnonzero(_run_outside(model, runs)).tolist(), OUTSIDE)
     _judge_data(model, is_main)
     return longitudinal_bars(model, runs)
 
@@ -89,7 +88,9 @@ def _across(
     shapes, shape = np.unique(tied.stands_for, return_inverse=True)
     model = measure(places, rows.take(shapes), findings)
     of_shapes, legs = _find_ties(model)
-    outside = _outside(model, anywhere=True)[shape]
+    outside = _outside(model, anywhere=True)
+    outside |= legs_outside(places.frames, model.rows.beam, of_shapes.x, legs, model.lines.diameter)
+    outside = outside[shape]
     ties = replace(of_shapes.take(shape), row=np.arange(len(shape)))
     ties = replace(ties, x=ties.x + tied.shift)
     model = replace(model, rows=tied.rows, bar=places.table.bar[tied.rows.strand])
@@ -148,8 +149,19 @@ def _judge_roles(model: Measured, mask: Bools, roles: frozenset[str], text: str)
     model.remark(contrary, f"{text}: taken by its shape")
 
 
+def _run_outside(model: Measured, runs: Runs) -> Bools:
+    """Whether each bar that runs along its beam leaves its section between the beam's ends."""
+    is_main = np.zeros(model.lines.count, dtype=bool)
+    is_main[runs.row] = True
+    outside = is_main & _outside(model)
+    diameter = model.lines.diameter[runs.row]
+    beyond = runs_outside(model.places.frames, model.rows.beam[runs.row], runs, diameter)
+    outside[runs.row[beyond]] = True
+    return outside
+
+
 def _outside(model: Measured, anywhere: bool = False) -> Bools:
-    """Whether each bar leaves its section between the beam's ends, or ``anywhere``."""
+    """Whether each bar leaves the box round its section between the ends, or ``anywhere``."""
     lines, beam = model.lines, model.rows.beam[model.lines.row]
     x = lines.points[:, 0]
     bounds = model.places.frames.bounds_at(beam, x)
