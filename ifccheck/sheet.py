@@ -193,7 +193,9 @@ def _numbers_put_in(formula: str, values: dict[str, float]) -> str:
 
 def _number(value: float) -> str:
     """A number inside a formula, in N, mm, MPa: four significant digits, no loss of whole ones."""
-    if not math.isfinite(value) or value == 0.0:
+    if math.isinf(value):
+        return "∞" if value > 0.0 else "(-∞)"
+    if math.isnan(value) or value == 0.0:
         return str(value).removesuffix(".0")
     if abs(value) >= 1e7:
         text = f"{value / 1e6:.5g}e6"
