@@ -599,6 +599,15 @@ def test_bars_that_meet_end_to_end_or_cross_count_each() -> None:
     assert remarks == ""
 
 
+def test_of_bars_that_cross_flat_the_one_that_leans_is_left_out() -> None:
+    leaning = Curve(((40.0, -100.0, 60.0), (5960.0, 100.0, 60.0)))
+    others = [straight(40, 5960, y, 60) for y in (-50.0, 0.0, 50.0)]
+    area, remarks, (bars,) = twice(leaning, *others)
+    assert area == pytest.approx(3.0 * ONE_25)
+    assert bars.ys == pytest.approx((-50.0, 0.0, 50.0))
+    assert "modelled twice" in remarks
+
+
 def test_twice_the_cage_of_a_long_beam_counts_once() -> None:
     ys = [-90.0, -30.0, 30.0, 90.0]
     cage = [straight(40, 5960, y, z) for y in ys for z in (60.0, 540.0)]

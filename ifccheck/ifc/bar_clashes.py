@@ -20,6 +20,8 @@ LAP = 200.0
 """Bars lapped on one axis count together over this length [mm]: no more than any development
 length, in tension or compression, so that both give no more than one (CSA A23.3-14, 12.3.1, from
 memory)."""
+LEAN = 10.0
+"""Step [mm] by which bars that lean across the beam are told from those that do not."""
 USUAL_YIELD = 400.0
 """Yield strength [MPa] by which a bar of unknown steel is compared."""
 TWICE = "lie in one another, as if modelled twice: counted once"
@@ -36,20 +38,25 @@ class _Counted:
     end_hook: Bools
     counted: Bools
     diameter: Floats
+    lean: Floats
     force: Floats
 
-    def gives(self, run: int) -> tuple[float, int, float]:
-        """What a run gives, in the order of what matters: force, hooks, length."""
+    def gives(self, run: int) -> tuple[float, float, int, float]:
+        """What a run gives, in the order of what matters: force, lean, hooks, length."""
         hooks = int(self.start_hook[run]) + int(self.end_hook[run])
-        return float(self.force[run]), hooks, float(self.end[run] - self.start[run])
+        return float(self.force[run]), float(self.lean[run]), hooks, self.length(run)
+
+    def length(self, run: int) -> float:
+        """Length of a run [mm]."""
+        return float(self.end[run] - self.start[run])
 
     def leave_out(self, one: int, other: int) -> int:
-        """Leave out that of two runs which gives more; of equal bars that stop at quite other
-        places the shorter one."""
+        """Leave out that of two runs which gives more, or leans; of equal bars that stop at quite
+        other places the shorter one."""
         long = LEAST_RUN * max(self.diameter[one], self.diameter[other])
-        differ = abs(self.gives(one)[2] - self.gives(other)[2])
+        differ = abs(self.length(one) - self.length(other))
         if self.force[one] == self.force[other] and differ > long:
-            out = one if self.gives(one)[2] < self.gives(other)[2] else other
+            out = one if self.length(one) < self.length(other) else other
         else:
             out = one if self.gives(one) > self.gives(other) else other
         self.counted[out] = False
@@ -82,6 +89,7 @@ def without_clashes(model: Measured, runs: Runs, beam: Ints, taken: Bools) -> tu
         runs.end_hook.copy(),
         taken.copy(),
         diameter,
+        np.rint(np.abs(np.diff(runs.line[:, :, 1:], axis=1)).max(axis=(1, 2)) / LEAN),
         np.zeros(len(diameter)),
     )
     pairs = [pair for pair in _clashes(runs, beam, diameter) if taken[list(pair)].all()]
