@@ -3,17 +3,15 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Iterator
 from typing import TYPE_CHECKING
 
 import numpy as np
 
 from ifccheck.beam import Box
-from ifccheck.ifc.bodies import Placed, resolved_items
-from ifccheck.ifc.boxes import box_round
+from ifccheck.ifc.bodies import BOOLEANS, resolved_items
+from ifccheck.ifc.boxes import FACETED, box_round
 from ifccheck.ifc.clips import Cloud
 from ifccheck.ifc.entity import (
-    ILL_TYPED,
     REPRESENTATION,
     Entity,
     UnreadableError,
@@ -23,8 +21,9 @@ from ifccheck.ifc.entity import (
     several,
 )
 from ifccheck.ifc.placements import Matrix
-from ifccheck.ifc.points import plane_points_of, points_of
+from ifccheck.ifc.points import curve_points_of, points_of
 from ifccheck.ifc.profiles import Profiles
+from ifccheck.ifc.vectors import unit
 
 if TYPE_CHECKING:
     from ifccheck.ifc.context import Context
@@ -39,21 +38,28 @@ _PROFILES = ("SweptArea", "EndSweptArea")
 
 
 def rough_box(context: Context, profiles: Profiles, product: Entity) -> Box:
-    """Return the box round every point under any representation of a product, and GROWN more.
+    """Return the box round all that can be told of any representation, and GROWN more.
 
     A revolved body by its profile at steps of five degrees; one swept along a curve by the
-    points of that curve, and grown by the reach of its profile besides. Raises UnreadableError
-    where it has no point.
+    points of that curve and the reach of its profile. Raises UnreadableError where a body
+    cannot be told and no axis tells where the member runs.
     """
     shape = product.get_argument(REPRESENTATION)
     whole = context.placements.matrix(product)
     clouds: list[Cloud] = []
+    lost: UnreadableError | None = None
+    axis = False
     for representation in (shape.get_argument(2) or ()) if shape is not None else ():
-        level = get(representation, "RepresentationIdentifier") == "Axis"
         for placed in resolved_items(context, representation, whole):
-            clouds += _clouds(context, profiles, placed, level)
-    if not clouds:
-        raise UnreadableError(f"extent of an {product.is_a()} without points")
+            try:
+                local = _local(context, profiles, placed.item)
+            except UnreadableError as error:
+                lost = error
+                continue
+            clouds.append(local @ placed.matrix[:3, :3].T + placed.matrix[:3, 3])
+            axis = axis or get(representation, "RepresentationIdentifier") == "Axis"
+    if not clouds or (lost is not None and not axis):
+        raise lost or UnreadableError(f"extent of an {product.is_a()} without a shape")
     return _grown(np.concatenate(clouds), np.ascontiguousarray(whole[:3, :3].T))
 
 
@@ -63,37 +69,68 @@ def _grown(cloud: Cloud, axes: Matrix) -> Box:
     return Box(box.centre, box.axes, (x + GROWN, y + GROWN, z + GROWN))
 
 
-def _clouds(context: Context, profiles: Profiles, placed: Placed, level: bool) -> Iterator[Cloud]:
-    """Points of an item in the building; nothing where it has none."""
+def _local(context: Context, profiles: Profiles, item: Entity) -> Cloud:
+    """Points that enclose an item, in its own axes."""
+    if item.is_a() in BOOLEANS:
+        first = _local(context, profiles, need(item, "FirstOperand"))
+        if get(item, "Operator") != "UNION":
+            return first
+        return np.concatenate((first, _local(context, profiles, need(item, "SecondOperand"))))
+    if item.is_a("IfcCsgSolid"):
+        return _local(context, profiles, need(item, "TreeRootExpression"))
+    if item.is_a("IfcCurve"):
+        return curve_points_of(context, item)
+    if any(item.is_a(name) for name in FACETED):
+        return points_of(context, item)
+    if item.is_a("IfcRevolvedAreaSolid"):
+        return _revolved(context, profiles, item)
+    if item.is_a("IfcExtrudedAreaSolid"):
+        return _extruded(context, profiles, item)
+    return _swept(context, profiles, item)
+
+
+def _extruded(context: Context, profiles: Profiles, item: Entity) -> Cloud:
+    """Corners of an extrusion, both ways: what is wrong with it may be its sense."""
+    depth = float(need(item, "Depth")) * context.units.length
+    if not math.isfinite(depth):
+        raise UnreadableError(f"body is extruded by {depth:g} mm")
+    ring = _ring(context, profiles, need(item, "SweptArea"))
+    corners = np.column_stack([ring, np.zeros(len(ring))])
+    along = np.array(unit(numbers(need(item, "ExtrudedDirection"), 3))) * depth
+    return _positioned(context, item, np.concatenate((corners - along, corners + along)))
+
+
+def _ring(context: Context, profiles: Profiles, area: Entity) -> Cloud:
+    """Corners of a profile; those of its outline where it is no sound figure."""
     try:
-        if placed.item.is_a("IfcRevolvedAreaSolid"):
-            local = _revolved(context, profiles, placed.item)
-        else:
-            read = plane_points_of if level else points_of
-            local = _swollen(read(context, placed.item), _reach(profiles, placed.item))
-    except (UnreadableError, *ILL_TYPED):
-        return  # the rest of its representations may tell more
-    yield local @ placed.matrix[:3, :3].T + placed.matrix[:3, 3]
+        return profiles.of(area).rings[0]
+    except UnreadableError:
+        return curve_points_of(context, need(area, "OuterCurve"))[:, :2]
 
 
-def _reach(profiles: Profiles, item: Entity) -> float:
-    """How far the profiles of a swept item reach from the curve they are swept along [mm]."""
+def _swept(context: Context, profiles: Profiles, item: Entity) -> Cloud:
+    curve = get(item, "Directrix") or get(item, "SpineCurve")
+    if curve is None:
+        raise UnreadableError(f"extent of an {item.is_a()}")
     areas = [area for name in _PROFILES if (area := get(item, name)) is not None]
     areas += several(item, "CrossSections")
-    corners = [np.abs(profiles.of(area).rings[0]).max() for area in areas]
-    return float(max(corners, default=0.0)) * math.sqrt(2.0)
-
-
-def _swollen(cloud: Cloud, reach: float) -> Cloud:
-    if not reach:
-        return cloud
+    reach = max(
+        (float(np.abs(_ring(context, profiles, area)).max()) * math.sqrt(2.0) for area in areas),
+        default=float(get(item, "Radius") or 0.0) * context.units.length,
+    )
     ways = np.array([[x, y, z] for x in (-1, 1) for y in (-1, 1) for z in (-1, 1)]) * reach
-    return np.asarray((cloud[:, None, :] + ways).reshape(-1, 3))
+    cloud = curve_points_of(context, curve)
+    return _positioned(context, item, (cloud[:, None, :] + ways).reshape(-1, 3))
+
+
+def _positioned(context: Context, item: Entity, cloud: Cloud) -> Cloud:
+    position = context.placements.axes(get(item, "Position"))
+    return np.asarray(cloud @ position[:3, :3].T + position[:3, 3])
 
 
 def _revolved(context: Context, profiles: Profiles, item: Entity) -> Cloud:
     """Corners of a revolved profile at even steps of its turn, in the item's own axes."""
-    ring = profiles.of(need(item, "SweptArea")).rings[0]
+    ring = _ring(context, profiles, need(item, "SweptArea"))
     corners = np.column_stack([ring, np.zeros(len(ring))])
     axis = need(item, "Axis")
     about = get(axis, "Axis")
@@ -103,8 +140,7 @@ def _revolved(context: Context, profiles: Profiles, item: Entity) -> Cloud:
     angle = float(need(item, "Angle")) * context.units.angle
     steps = np.linspace(0.0, angle, max(2, math.ceil(abs(angle) / _STEP) + 1))
     turned = np.concatenate([_turned(corners - foot, way, step) + foot for step in steps])
-    position = context.placements.axes(get(item, "Position"))
-    return np.asarray(turned @ position[:3, :3].T + position[:3, 3])
+    return _positioned(context, item, turned)
 
 
 def _turned(points: Cloud, way: Cloud, angle: float) -> Cloud:
