@@ -324,6 +324,19 @@ def test_of_stirrups_in_one_another_the_thinner_counts() -> None:
     assert zone.legs * zone.leg_area == pytest.approx(2.0 * math.pi * 64.0 / 4.0)
 
 
+@pytest.mark.parametrize("grades", [("500W", "300R"), ("300R", "500W")])
+def test_of_equal_stirrups_in_one_another_the_weaker_steel_counts(grades: tuple[str, str]) -> None:
+    model = ModelWithBars()
+    beam = model.beam()
+    model.bars(beam, straight(40, 5960, 0, 60), diameter=20.0)
+    for grade in grades:
+        model.bars(beam, *at(list(PLACES)), diameter=10.0, SteelGrade=grade)
+    (zone,) = model.read(beam).stirrups
+    assert zone.legs == 2
+    assert zone.yield_strength is not None
+    assert zone.yield_strength.value == 300.0
+
+
 def test_a_side_drawn_twice_in_one_stirrup_is_one_leg() -> None:
     """A closed stirrup that goes on over its first side again."""
     ring = [(110, 560), (110, 40), (-110, 40), (-110, 560), (110, 560), (110, 40), (0, 40)]

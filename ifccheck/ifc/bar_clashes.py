@@ -9,7 +9,7 @@ import numpy as np
 
 from ifccheck.ifc.bar_paths import Bools, Floats, Ints
 from ifccheck.ifc.bars import LEAST_RUN, Runs, group
-from ifccheck.ifc.measured import Measured
+from ifccheck.ifc.measured import USUAL_YIELD, Measured
 
 TOUCHING = 0.9
 """The centres of two bars are no nearer than this part of their mean diameter: bars of a bundle
@@ -22,8 +22,6 @@ length, in tension or compression, so that both give no more than one (CSA A23.3
 memory)."""
 LEAN = 10.0
 """Step [mm] by which bars that lean across the beam are told from those that do not."""
-USUAL_YIELD = 400.0
-"""Yield strength [MPa] by which a bar of unknown steel is compared."""
 TWICE = "lie in one another, as if modelled twice: counted once"
 LAPPED = f"lap on one axis, drawn in one another: counted together over {LAP:.0f} mm only"
 

@@ -5,12 +5,17 @@ from __future__ import annotations
 from collections.abc import Iterable
 from dataclasses import dataclass
 
+import numpy as np
+
 from ifccheck.beam import Given
 from ifccheck.ifc.bar_findings import LISTED, Findings, name_bars
-from ifccheck.ifc.bar_paths import Ints
+from ifccheck.ifc.bar_paths import Floats, Ints
 from ifccheck.ifc.bar_pieces import CentreLines, Pieces, cut_into_pieces
 from ifccheck.ifc.bar_rows import BarPlaces, Rows
 from ifccheck.ifc.bar_sizes import BarSize
+
+USUAL_YIELD = 400.0
+"""Yield strength [MPa] by which bars of unknown steel are compared."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -43,6 +48,11 @@ class Measured:
         """Yield strength of the bar of a row."""
         table = self.places.table
         return table.grades[int(table.grade[self.bar[row]])].strength
+
+    def yields(self) -> Floats:
+        """Yield strength by which bars of each grade are compared [MPa]."""
+        grades = self.places.table.grades
+        return np.array([g.strength.value if g.strength else USUAL_YIELD for g in grades])
 
     def remark(self, rows: Iterable[int], text: str) -> None:
         """Say something of the bars of rows."""

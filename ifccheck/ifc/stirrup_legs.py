@@ -78,26 +78,43 @@ class Doubled:
     """Stirrups with such legs where it matters to their number (Q, 2)."""
 
 
-def legs_in_one_another(
-    legs: Legs, shape: Ints, x: Floats, diameter: Floats, place: Ints, serves: Bools
-) -> Doubled:
-    """Find legs that lie in others at the same place along the beam; of two the thicker is left
-    out. Arrays are one row per stirrup (T); only levels that it ``serves`` are looked at."""
-    stirrup, leg = _legs_of(legs, shape)
-    held = serves[stirrup, legs.level[leg]]
+@dataclass(frozen=True, slots=True)
+class Standing:
+    """Stirrups whose legs are looked at; one row each (T)."""
+
+    shape: Ints
+    x: Floats
+    diameter: Floats
+    strength: Floats
+    """Yield strength [MPa]."""
+    place: Ints
+    """Number of the place along a beam."""
+    serves: Bools
+    """Levels at which each is looked at (T, 3)."""
+
+    def gives(self, stirrup: int) -> tuple[float, float, int]:
+        """What a leg gives; of equal ones the later is as if it gave more."""
+        return float(self.diameter[stirrup]), float(self.strength[stirrup]), stirrup
+
+
+def legs_in_one_another(legs: Legs, ties: Standing) -> Doubled:
+    """Find legs that lie in others at the same place along the beam; of two that which gives
+    more is left out."""
+    stirrup, leg = _legs_of(legs, ties.shape)
+    held = ties.serves[stirrup, legs.level[leg]]
     stirrup, leg = stirrup[held], leg[held]
-    counts = np.zeros((len(shape), len(LEVELS)), dtype=np.intp)
-    group = place[stirrup] * len(LEVELS) + legs.level[leg]
+    counts = np.zeros((len(ties.shape), len(LEVELS)), dtype=np.intp)
+    group = ties.place[stirrup] * len(LEVELS) + legs.level[leg]
     order = np.lexsort((legs.y[leg], group))
     stirrup, leg, group = stirrup[order], leg[order], group[order]
-    y, along, thick = legs.y[leg], x[stirrup] + legs.x[leg], diameter[stirrup]
+    along, thick = ties.x[stirrup] + legs.x[leg], ties.diameter[stirrup]
     left_out: set[int] = set()
     pairs = []
-    for one, other in _near_pairs(group, y, along, thick):
+    for one, other in _near_pairs(group, legs.y[leg], along, thick):
         if one in left_out or other in left_out:
             continue
         first, second = int(stirrup[one]), int(stirrup[other])
-        out = one if (thick[one], first) > (thick[other], second) else other
+        out = one if ties.gives(first) > ties.gives(second) else other
         left_out.add(out)
         counts[stirrup[out], legs.level[leg[out]]] += 1
         if legs.level[leg[out]] != 1 and first != second:

@@ -13,6 +13,7 @@ from ifccheck.ifc.measured import Measured
 from ifccheck.ifc.stirrup_legs import (
     Extents,
     Legs,
+    Standing,
     legs_in_one_another,
     overlap_themselves,
     reaches_chords,
@@ -78,9 +79,15 @@ def _served(
     thick[ties.shape] = diameter
     known = legs.take(np.flatnonzero(legs.shape < len(thick)))
     looked = np.flatnonzero(crowded | overlap_themselves(known, thick)[ties.shape])
-    doubled = legs_in_one_another(
-        legs, ties.shape[looked], ties.x[looked], diameter[looked], place[looked], serves[looked]
+    standing = Standing(
+        ties.shape[looked],
+        ties.x[looked],
+        diameter[looked],
+        model.yields()[model.places.grade[model.rows.strand[ties.row[looked]]]],
+        place[looked],
+        serves[looked],
     )
+    doubled = legs_in_one_another(legs, standing)
     counts = ties.legs.copy()
     counts[looked] -= doubled.counts
     for pair in looked[doubled.pairs].tolist():
