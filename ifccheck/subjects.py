@@ -36,7 +36,7 @@ from ifccheck.brief.statements import (
 from ifccheck.brief.supports import resolve_supports, stated_ends
 from ifccheck.detailing import choose_source, lay_out
 from ifccheck.frame.carrying import contacts_of, pressed_ends
-from ifccheck.frame.contacts import between_reactions, reactions_reason, unmeasured_reason
+from ifccheck.frame.reactions import loaded_from_side, unknown_reactions
 from ifccheck.frame.spans import Standing, stand_alone
 from ifccheck.rating.subject import Subject, Unrated
 from ifccheck.standards import Standard
@@ -173,9 +173,8 @@ def _one(
         faces=standing.faces,
         span_source=standing.source,
         direct=pressed_ends(sources.contacts.get(beam.key, ())),
-        side_loaded=any(
-            contact.place == "between" and contact.side == "side"
-            for contact in sources.contacts.get(beam.key, ())
+        side_loaded=loaded_from_side(
+            sources.contacts.get(beam.key, ()), beam.length, standing.bearings
         ),
         statements=_stated(statement),
         bars=steel.bars,
@@ -406,12 +405,5 @@ def _judge_loads(
     if any(natures.get(load.case) == "crane" for load in loads):
         findings.remarks.append(Remark(beam.key, "demand", _CRANE, "assumption"))
     if standing and not statement.loads_complete:
-        resting = between_reactions(
-            sources.contacts.get(beam.key, ()),
-            beam.length,
-            standing.bearings,
-            free_start=standing.span.start_support.kind == "free",
-            free_end=standing.span.end_support.kind == "free",
-        )
-        reasons = reactions_reason(resting), unmeasured_reason(beam, sources.unmeasured)
-        findings.reasons += [reason for reason in reasons if reason]
+        contacts = sources.contacts.get(beam.key, ())
+        findings.reasons += unknown_reactions(beam, contacts, standing, sources.unmeasured)

@@ -14,7 +14,8 @@ from scipy.optimize import linprog
 
 from ifccheck.beam import Axis, Beam, Box, Contact, Member, Outline, Run, Vector
 from ifccheck.frame.boxes import Boxes, overlaps
-from ifccheck.frame.contacts import between_reactions, find_contacts, is_seat, reactions_reason
+from ifccheck.frame.contacts import find_contacts, is_seat
+from ifccheck.frame.reactions import between_reactions, loaded_from_side, reactions_reason
 
 DEPTH, WIDTH, LENGTH = 600.0, 300.0, 6000.0
 RECTANGLE = Outline((((-150.0, 0.0), (150.0, 0.0), (150.0, DEPTH), (-150.0, DEPTH)),))
@@ -239,6 +240,8 @@ def test_what_reaches_further_in_than_the_support_counts(
     for support, counts in ((narrow, True), (wide, False), (facing, True)):
         resting = between_reactions(found(other, support), LENGTH)
         assert [c.other for c in resting] == [f"R ({ifc_class})"] * counts
+        beside = low[1] > 0.0
+        assert loaded_from_side(found(other, support), LENGTH, (0.0, 0.0)) is (counts and beside)
     assert not between_reactions(found(other, narrow), LENGTH, (0.0, 1000.0))
 
 

@@ -1,0 +1,132 @@
+"""What may rest on a beam between its supports, and bring reactions that no one has told."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Mapping, Sequence
+
+from ifccheck.beam import Beam, Contact, Reason, Unmeasured
+from ifccheck.frame.contacts import FRAMING, RESTING, TOLERANCE, UPRIGHT, is_seat, kind_of
+from ifccheck.frame.spans import Standing
+from ifccheck.units import show
+
+LONG_WALL = 1000.0
+"""A wall that stands along so much of a beam loads it as a line [mm]."""
+
+_NAMED = 3
+
+
+def unknown_reactions(
+    beam: Beam,
+    contacts: Sequence[Contact],
+    standing: Standing,
+    unmeasured: Sequence[Unmeasured],
+) -> list[Reason]:
+    """Why a beam is not rated whose loads are not stated to be complete; empty where it is."""
+    resting = between_reactions(
+        contacts,
+        beam.length,
+        standing.bearings,
+        free_start=standing.span.start_support.kind == "free",
+        free_end=standing.span.end_support.kind == "free",
+    )
+    reasons = reactions_reason(resting), unmeasured_reason(beam, unmeasured)
+    return [reason for reason in reasons if reason]
+
+
+def between_reactions(
+    contacts: Sequence[Contact],
+    length: float = math.inf,
+    bearings: tuple[float, float] = (0.0, 0.0),
+    *,
+    free_start: bool = False,
+    free_end: bool = False,
+) -> tuple[Contact, ...]:
+    """Contacts that may bring the reaction of another member to a beam between its supports.
+
+    Those are beams, columns, members, proxies, stairs, ramps and assemblies, and walls that
+    stand on it, but no columns under it; at an end also what reaches further in than that which
+    holds the end, and at a free end any of them: what touches the tip of a cantilever hangs on
+    it, and so may a beam under its soffit.
+
+    Parameters
+    ----------
+    contacts
+        Of one beam.
+    length
+        Of the beam [mm].
+    bearings
+        How far the bearings that the brief states reach in from either end [mm].
+    """
+    held = _held_stretches(contacts, length, bearings)
+    tips = {"start"} if free_start else set()
+    tips |= {"end"} if free_end else set()
+    return tuple(c for c in contacts if _may_rest(c) and _loads_span(c, tips, held, length))
+
+
+def loaded_from_side(
+    contacts: Sequence[Contact], length: float, bearings: tuple[float, float]
+) -> bool:
+    """Whether anything meets the side of a beam where it is not held."""
+    between = (contact for contact in contacts if contact.place == "between")
+    resting = between_reactions(contacts, length, bearings)
+    return any(contact.side == "side" for contact in (*between, *resting))
+
+
+def _may_rest(contact: Contact) -> bool:
+    kind = kind_of(contact.other_class)
+    return kind in FRAMING or kind in RESTING or (kind == "IfcWall" and contact.side == "above")
+
+
+def _loads_span(contact: Contact, tips: set[str], held: Mapping[str, float], length: float) -> bool:
+    if contact.place in tips:
+        return True
+    if contact.place == "between":
+        return contact.side != "below" or kind_of(contact.other_class) not in UPRIGHT
+    reach = contact.end if contact.place == "start" else length - contact.start
+    return contact.side in ("above", "side") and reach > held[contact.place] + TOLERANCE
+
+
+def _held_stretches(
+    contacts: Sequence[Contact], length: float, bearings: tuple[float, float]
+) -> dict[str, float]:
+    """How far in from either end the beam lies on what holds it [mm]."""
+    held = dict(zip(("start", "end"), bearings, strict=True))
+    for contact in contacts:
+        if contact.place != "between" and is_seat(contact) and not contact.doubt:
+            reach = contact.end if contact.place == "start" else length - contact.start
+            held[contact.place] = max(held[contact.place], reach)
+    return held
+
+
+def reactions_reason(contacts: Sequence[Contact]) -> Reason | None:
+    """Why a beam with such contacts is not rated; None without any."""
+    others = sorted({_told(contact) for contact in contacts})
+    if not others:
+        return None
+    named = ", ".join(others[:_NAMED])
+    rest = f" and {len(others) - _NAMED} more" if len(others) > _NAMED else ""
+    return Reason(f"reactions not included: {named}{rest}", blocking=False)
+
+
+def unmeasured_reason(beam: Beam, unmeasured: Sequence[Unmeasured]) -> Reason | None:
+    """Why a beam is not rated where members may rest on it that no one knows the place of."""
+    near = [
+        each
+        for each in unmeasured
+        if each.step_id != beam.step_id and (not beam.storey or each.storey in ("", beam.storey))
+    ]
+    if not near:
+        return None
+    names = sorted({each.name or f"{each.ifc_class} #{each.step_id}" for each in near})
+    rest = f" and {len(names) - _NAMED} more" if len(names) > _NAMED else ""
+    count = "1 member has" if len(near) == 1 else f"{len(near)} members have"
+    text = f"{count} no readable extent ({', '.join(names[:_NAMED])}{rest})"
+    return Reason(f"reactions not included: {text}", blocking=False)
+
+
+def _told(contact: Contact) -> str:
+    along = contact.end - contact.start
+    if kind_of(contact.other_class) == "IfcWall" and along >= LONG_WALL:
+        return f"{contact.other}, which stands along {show(along, 'length')} of it"
+    return contact.other
