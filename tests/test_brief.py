@@ -479,7 +479,9 @@ def test_a_fault_is_told_in_one_line_with_its_place(fault, text, message):
 
 
 def test_a_missing_brief_is_told(tmp_path):
-    with pytest.raises(BriefError, match=r"^brief.toml: there is no file .*brief.toml; check the path$"):
+    with pytest.raises(
+        BriefError, match=r"^brief.toml: there is no file .*brief.toml; check the path$"
+    ):
         load_brief(tmp_path / "brief.toml")
 
 
