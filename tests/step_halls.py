@@ -45,6 +45,8 @@ class Beam:
     bars: Sequence[Bar] = ()
     columns: bool = True
     """Whether a column stands under either end."""
+    column: float = 300.0
+    """Width of those columns."""
     tag: str = ""
     guid: str = ""
 
@@ -191,11 +193,15 @@ def _columns(beam: Beam) -> list[Block]:
     if not beam.columns:
         return []
     (x, y, z), (along_x, along_y, _) = beam.at, beam.along
+    size, half = beam.column, beam.column / 2.0
     return [
         Block(
-            f"C-{beam.mark}-{end}", (x + along_x * t, y + along_y * t, z - 3000.0), (300, 300), 3000
+            f"C-{beam.mark}-{end}",
+            (x + along_x * t, y + along_y * t, z - 3000.0),
+            (size, size),
+            3000,
         )
-        for end, t in (("start", 150.0), ("end", beam.length - 150.0))
+        for end, t in (("start", half), ("end", beam.length - half))
     ]
 
 

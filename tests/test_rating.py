@@ -10,7 +10,7 @@ import pytest
 from hypothesis import example, given, settings
 from hypothesis import strategies as st
 
-from ifccheck.beam import Anchor, Case, Reason, Verdict
+from ifccheck.beam import Anchor, Case, Load, Reason, Verdict
 from ifccheck.mechanics.arrays import Floats
 from ifccheck.rating.results import Rating
 from ifccheck.rating.subject import Subject
@@ -256,3 +256,38 @@ def test_bars_that_stop_well_before_the_tip_leave_it_without_steel() -> None:
     _, (rating,) = rated(cantilever(400.0))
     assert rating.verdict is Verdict.FALLS_SHORT
     assert math.isinf(rating.utilisation)
+
+
+def test_no_beam_falls_short_just_below_its_factor_where_utilisation_has_humps() -> None:
+    """With end moments and loads from the side, longitudinal tension drops as a case grows past
+    the place where the moment outdoes the shear: the first crossing counts."""
+    random = np.random.default_rng(2)
+    made = []
+    for number in range(250):
+        key, length = f"beam {number}", float(random.choice([3000.0, 4500.0, 6000.0]))
+        twist = float(random.uniform(-60e6, 60e6))
+        loads = (
+            line("floor", float(random.uniform(1.0, 20.0)), key, length),
+            Load(key, "floor", "moment", 100.0, 100.0, (twist, twist)),
+            point(
+                "press", float(random.uniform(300.0, 60e3)),
+                float(random.uniform(300.0, length - 300.0)), key,
+            ),
+        )  # fmt: skip
+        beam = subject(
+            key=key, length=length,
+            bottom=int(random.integers(2, 6)), top=int(random.integers(2, 5)),
+            spacing=float(random.choice([100.0, 200.0, 300.0])), loads=loads,
+        )  # fmt: skip
+        made.append(replace(beam, side_loaded=True))
+    _, ratings = rated(*made)
+    limited = [
+        (beam, rating.safe_loads[0].factor)
+        for beam, rating in zip(made, ratings, strict=True)
+        if 0.0 < rating.safe_loads[0].factor < math.inf
+    ]
+    assert len(limited) > 200
+    for share, exceeds in ((1.0 - 1e-6, False), (1.0 + 1e-4, True)):
+        _, found = rated(*(scaled(beam, "press", factor * share) for beam, factor in limited))
+        greatest = [np.max(np.nan_to_num(utilisations(rating), nan=np.inf)) for rating in found]
+        assert [value > 1.0 for value in greatest] == [exceeds] * len(limited)

@@ -587,7 +587,7 @@ def test_bars_that_stop_short(tmp_path: Path) -> None:
 
 def test_bars_count_by_the_smallest_diameter_that_is_credible(tmp_path: Path) -> None:
     """Attributes say 25M (500 mm2), the swept body 16 mm (200 mm2): the body counts."""
-    thick = barred(*row())
+    thick = hall(Beam(notation=None, bars=row(), column=600.0))
     thin = thick.replace("12.6,$,$,$", "8.0,$,$,$")
     heavy = load('line = "23 kN/m"')
     held = stated("supports", 'bearing = ["600 mm", "600 mm"]')

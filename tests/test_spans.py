@@ -125,7 +125,7 @@ def test_a_stated_span_replaces_the_length_and_not_the_faces() -> None:
         (FACING, (0.0, 0.0), 6000.0),
         (FACING, (240.0, 240.0), 6000.0),
         (BELOW, (0.0, 0.0), 6000.0 - 400.0 - 300.0),
-        (BELOW, (500.0, 0.0), 6000.0 - 500.0 - 300.0),
+        (BELOW, (500.0, 0.0), 6000.0 - 400.0 - 300.0),
         ((), (500.0, 400.0), 6000.0 - 900.0),
         ((), (0.0, 0.0), 0.9 * 6000.0),
     ],
@@ -140,3 +140,27 @@ def test_a_stated_span_less_than_the_clear_one_is_refused(
         f"the stated span of {(clear - 40.0) / 1000.0:.2f} m (brief, beams[1]) is less than the"
         f" {clear / 1000.0:.2f} m between the faces of its supports"
     )
+
+
+@pytest.mark.parametrize("overlap", [0.0, 5.0, 12.0, 100.0, 190.0])
+@pytest.mark.parametrize("bearing", [0.0, 400.0])
+def test_the_span_is_centre_to_centre_however_far_an_end_is_drawn_into_its_column(
+    overlap: float, bearing: float
+) -> None:
+    """Columns 400 wide; the beam of 6000 is drawn ``overlap`` into either of them."""
+    side = "below" if overlap > 10.0 else "end"
+    reach = overlap if side == "below" else 0.0
+    ends = [contact(end, side, reach, beyond=400.0 - overlap) for end in ("start", "end")]
+    if side == "end":
+        ends = [
+            replace(ends[0], end=overlap),
+            replace(ends[1], start=6000.0 - overlap),
+        ]
+    span = stand(*ends, bearings=(bearing, bearing)).span
+    assert span.end - span.start == pytest.approx(6000.0 - 2.0 * overlap + 400.0)
+
+
+def test_a_cantilever_spans_from_the_face_and_says_so() -> None:
+    standing = stand(FACING[0], kinds=("fixed", "free"), bearings=(400.0, 0.0))
+    assert measured(standing)[:2] == pytest.approx((0.0, 6000.0))
+    assert standing.source == "from the face of its support to its free end"

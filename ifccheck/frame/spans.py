@@ -63,9 +63,9 @@ def stand_alone(
     Where an end meets the face of another member, the centre lies beyond the end: by half the
     bearing that the brief states, else by half of what the model shows of that member beyond the
     end, and by no more than half the beam's depth (the clear span plus the depth need not be
-    exceeded: CSA A23.3-14 9.2.3, from memory). Where an end lies on a member, the bearing lies
-    within the beam; where neither brief nor model tells of one, the beam's end counts as centre
-    and face. A span that the engineer states replaces that length: a cantilever's is counted
+    exceeded: CSA A23.3-14 9.2.3, from memory). That holds however far the end is drawn into the
+    member or lies on it; a bearing counts within the beam only as far as the model shows the
+    member there. A span that the engineer states replaces that length: a cantilever's is counted
     from the face, any other lies centred.
 
     Parameters
@@ -82,6 +82,9 @@ def stand_alone(
     )
     start, end = _between(beam.length, supports, seats)
     source = f"from {seats[0].told} to {seats[1].told}"
+    cantilever = "free" in (supports[0].kind, supports[1].kind)
+    if cantilever:
+        source = "from the face of its support to its free end"
     if stated is not None:
         start, end = _stated(start, end, supports, stated.value)
         source = stated.source
@@ -91,7 +94,7 @@ def stand_alone(
         bearings=(seats[0].face, seats[1].face),
         source=source,
         reasons=() if stated is None else _too_short(beam.length, seats, stated),
-        remarks=_remarks(beam.key, seats, source) if stated is None else (),
+        remarks=() if stated is not None or cantilever else _remarks(beam.key, seats, source),
     )
 
 
@@ -102,18 +105,11 @@ def _seating(beam: Beam, end: End, support: Support, contacts: Sequence[Contact]
     if support.kind == "free":
         return _Seating(0.0, 0.0, 0.0, f"its free {end}")
     seats = _seats(end, contacts)
-    facing = [contact for contact in seats if contact.side == "end"]
-    if facing:
-        return _facing(beam, end, support, max(facing, key=lambda contact: contact.beyond))
     if not seats:
         unknown = UNKNOWN_BEARING * beam.length
         return _Seating(0.0, support.bearing, support.bearing or unknown, f"its {end}")
-    reach = max(_inside(contact, beam.length) for contact in seats)
-    if support.bearing:
-        half = support.bearing / 2.0
-        told = f"the middle of its stated bearing, {show(half, 'dimension')} within its {end}"
-        return _Seating(-half, support.bearing, max(support.bearing, reach), told)
-    return _Seating(0.0, 0.0, reach, f"its {end}")
+    facing = [contact for contact in seats if contact.side == "end"]
+    return _seated(beam, end, support, facing or seats)
 
 
 def _seats(end: End, contacts: Sequence[Contact]) -> list[Contact]:
@@ -133,15 +129,25 @@ def _inside(contact: Contact, length: float) -> float:
     return contact.end if contact.place == "start" else length - contact.start
 
 
-def _facing(beam: Beam, end: End, support: Support, contact: Contact) -> _Seating:
-    """An end that meets the face of another member."""
+def _seated(beam: Beam, end: End, support: Support, seats: Sequence[Contact]) -> _Seating:
+    """An end that lies on a member, meets its face, or is drawn some way into it.
+
+    The centre lies half the bearing beyond the face of the support, wherever in it the end is.
+    """
+    inside = max(_inside(contact, beam.length) for contact in seats)
+    widest = max(seats, key=lambda contact: contact.beyond)
     half_depth = _depth(beam) / 2.0
-    half = (support.bearing or contact.beyond) / 2.0
-    beyond = min(half, half_depth)
-    whose = "its stated bearing" if support.bearing else contact.other
-    what = f"the centre of {whose}" if half <= half_depth else "half its depth"
-    told = f"{what}, {show(beyond, 'dimension')} beyond its {end}"
-    return _Seating(beyond, 0.0, 0.0, told, inferred=not support.bearing)
+    half = (support.bearing or inside + widest.beyond) / 2.0
+    within = min(support.bearing, inside)
+    beyond = round(max(min(half, half_depth) - inside, -within / 2.0), 6)
+    told = f"its {end}"
+    if beyond > 0.0:
+        whose = "its stated bearing" if support.bearing else widest.other
+        what = f"the centre of {whose}" if half <= half_depth else "half its depth"
+        told = f"{what}, {show(beyond, 'dimension')} beyond its {end}"
+    elif beyond < 0.0:
+        told = f"the middle of its stated bearing, {show(-beyond, 'dimension')} within its {end}"
+    return _Seating(beyond, within, inside, told, inferred=beyond > 0.0 and not support.bearing)
 
 
 def _depth(beam: Beam) -> float:

@@ -25,6 +25,8 @@ _TURNING = slice(0, 3)
 """The numbers of a demand that may change their sense"""
 _AT_ONCE = 32768
 """Elements evaluated together, so that their arrays stay in the processor's cache"""
+_BESIDE = 1e-6
+"""Part of a factor by which what it must not exceed is looked at below it"""
 _INTERIOR = (0.1, 0.35, 0.7)
 """Fractions of the bracket at which elements that may not be monotone are looked at."""
 
@@ -145,6 +147,8 @@ def rating_factors(
     ):
         rows = np.array([states.index(state) for state in problem.quick.states])
         found = _least_factor(problem, np.minimum(least.factor, most))
+        if not problem.quick.linear:
+            _step_down(problem, found)
         better = np.flatnonzero(found.factor < least.factor)
         least.factor[better], least.element[better] = found.factor[better], found.element[better]
         least.state[better] = rows[found.state[better]]
@@ -202,6 +206,27 @@ def _least_factor(problem: _Problem, ceiling: Floats) -> _Least:
             _close_in(governing, _bracket(governing, low, high, below, above), least)
     high[least.element < 0] = np.inf
     return least
+
+
+def _step_down(problem: _Problem, least: _Least) -> None:
+    """Lower factors, in place, just below which some element exceeds that no longer does at them.
+
+    A utilisation may drop as a case grows, where another face or rule begins to hold.
+    """
+    for _ in range(_MOST_STEPS):
+        limited = np.isfinite(least.factor) & (least.factor > 0.0)
+        rows = np.flatnonzero(limited[problem.beam])
+        if not rows.size:
+            return
+        beside = np.where(limited, least.factor * (1.0 - _BESIDE), 0.0)
+        over = np.any(problem.take(rows).everywhere(beside) > 1.0, axis=0)
+        beams = np.unique(problem.beam[rows[over]])
+        if not beams.size:
+            return
+        again = problem.take(np.flatnonzero(np.isin(problem.beam, beams)))
+        lower = _least_factor(again, beside)
+        least.factor[beams], least.state[beams] = lower.factor[beams], lower.state[beams]
+        least.element[beams] = lower.element[beams]
 
 
 def _look_inside(problem: _Problem, over: Bools, above: Floats, high: Floats) -> None:
