@@ -449,6 +449,8 @@ def test_names_without_a_strength(text: str) -> None:
 @pytest.mark.parametrize(
     "text",
     [
+        "Concrete C.30/37",
+        "Beton C30/60",
         "Concrete 4,5 ksi",
         "Concrete 27,5 MPa",
         "f'c = 27,5",

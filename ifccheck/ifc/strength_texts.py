@@ -53,6 +53,7 @@ SPEAKS_OF_STRENGTH = re.compile(
     rf"(?<![a-z])f{_PRIME}c|(?<![a-z])(?:fcu|rck|fck?\s*[=:])|\d{{4}}\s*#(?!\s*\d)"
     r"|(?<!fire )(?<!exposure )(?:strength|grade|class)[^\d]{0,12}\d{2}"
     r"|(?<![a-z])[bckmhns]-?\d{2,3}(?![\da-z/]|[.,]\d|\s*[x×])"
+    r"|(?<![a-z])l?c[\W_]{0,2}\d{2,3}\s*/\s*\d{2,3}"
     r"|(?:concrete|beton|béton|hormig[oó]n|concreto)\W{0,3}(?:[1-9]\d|[2-9]\d{3})(?![\d/.,]|\s*[a-z×%])",
     re.I,
 )
