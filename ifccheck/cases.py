@@ -42,3 +42,10 @@ class Combination:
             return self.name
         acting = " + ".join(text for nature, text in self.terms if nature in natures)
         return acting + self.name.removeprefix(whole)
+
+    def covers(self, other: Combination) -> bool:
+        """Whether this one is at least as onerous at every case of the other."""
+        return all(
+            self.factors[name][0] >= unfavourable and self.factors[name][1] <= favourable
+            for name, (unfavourable, favourable) in other.factors.items()
+        )

@@ -56,14 +56,7 @@ def not_covered(
     wanted: Sequence[Combination], given: Sequence[Combination]
 ) -> tuple[Combination, ...]:
     """The combinations of which no given one is at least as onerous at every case."""
-    return tuple(one for one in wanted if not any(_covers(other, one) for other in given))
-
-
-def _covers(other: Combination, one: Combination) -> bool:
-    return all(
-        other.factors[name][0] >= unfavourable and other.factors[name][1] <= favourable
-        for name, (unfavourable, favourable) in one.factors.items()
-    )
+    return tuple(one for one in wanted if not any(other.covers(one) for other in given))
 
 
 def case_factors(combination: Combination, case: Case) -> tuple[float, float]:

@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections import Counter
 from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass
-from typing import NamedTuple
+from typing import Any, NamedTuple
 
 from ifccheck.beam import Box, Member, Remark, Ring, Unmeasured
 from ifccheck.ifc.boxes import Boxes
@@ -180,10 +180,10 @@ def _entities(context: Context) -> Iterator[Entity]:
                 yield entity
 
 
-def by_class(file: object, name: str) -> tuple[Entity, ...]:
+def by_class(file: Any, name: str) -> tuple[Entity, ...]:
     """Return the entities of a class; none where the schema has no such class."""
     try:
-        found: tuple[Entity, ...] = file.by_type(name)  # type: ignore[attr-defined]
+        found: tuple[Entity, ...] = file.by_type(name)
     except RuntimeError:
         return ()
     return found

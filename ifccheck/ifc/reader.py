@@ -5,7 +5,6 @@ from __future__ import annotations
 from collections import Counter
 from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import replace
-from typing import Any, Protocol
 
 from ifccheck.beam import Beam, Box, Model, OutOfScope, Reinforcement, Remark
 from ifccheck.errors import ModelError
@@ -14,6 +13,7 @@ from ifccheck.ifc.context import BeamFrame, Context, make_context
 from ifccheck.ifc.entity import GLOBAL_ID, ILL_TYPED, Entity, text_at
 from ifccheck.ifc.lexer import EXPORT_AGAIN
 from ifccheck.ifc.members import read_members
+from ifccheck.ifc.opening import OpenedModel
 from ifccheck.ifc.profiles import Profiles
 from ifccheck.ifc.reinforcement import read_reinforcement
 from ifccheck.ifc.step_table import StepTable
@@ -22,25 +22,8 @@ from ifccheck.ifc.storeys import Storeys
 STAGE = "reading"
 
 
-class Opened(Protocol):
-    """What reading needs of an opened model."""
-
-    @property
-    def file(self) -> Any: ...  # noqa: D102
-    @property
-    def schema(self) -> str: ...  # noqa: D102
-    @property
-    def name(self) -> str: ...  # noqa: D102
-    @property
-    def file_name(self) -> str: ...  # noqa: D102
-    @property
-    def sha256(self) -> str: ...  # noqa: D102
-    @property
-    def remarks(self) -> tuple[Remark, ...]: ...  # noqa: D102
-
-
 def read_model(
-    opened: Opened, mapping: Mapping[str, str], statements: StepTable | None = None
+    opened: OpenedModel, mapping: Mapping[str, str], statements: StepTable | None = None
 ) -> Model:
     """Return all that a model says of its beams.
 
@@ -58,7 +41,7 @@ def read_model(
         ) from error
 
 
-def _read(opened: Opened, mapping: Mapping[str, str], statements: StepTable | None) -> Model:
+def _read(opened: OpenedModel, mapping: Mapping[str, str], statements: StepTable | None) -> Model:
     context = make_context(opened.file, opened.schema)
     entities = opened.file.by_type("IfcBeam")
     if entities and "length" not in context.units.declared:

@@ -4,26 +4,18 @@ from __future__ import annotations
 
 import re
 from collections.abc import Callable, Iterator, Sequence
-from typing import Any, Protocol
+from typing import Any
 
 from ifccheck.beam import Beam
 from ifccheck.errors import BriefError
+from ifccheck.ifc.opening import OpenedModel
 from ifccheck.units import clipped
 
 Field = Callable[[Beam], str]
 
 
-class Opened(Protocol):
-    """What a selection needs of an opened model."""
-
-    @property
-    def file(self) -> Any: ...  # noqa: D102
-    @property
-    def file_name(self) -> str: ...  # noqa: D102
-
-
 def select(
-    opened: Opened,
+    opened: OpenedModel,
     beams: Sequence[Beam],
     patterns: Sequence[str] | None,
     where: str | None,
@@ -85,7 +77,7 @@ def _matcher(pattern: str) -> Callable[[str], bool]:
     return lambda text: text != "" and expression.fullmatch(text) is not None
 
 
-def _answer(opened: Opened, beams: Sequence[Beam], query: str) -> set[str]:
+def _answer(opened: OpenedModel, beams: Sequence[Beam], query: str) -> set[str]:
     """Keys of the beams that an element query finds among the candidates."""
     from ifcopenshell.util import selector
     from lark.exceptions import LarkError
@@ -117,7 +109,7 @@ def _answer(opened: Opened, beams: Sequence[Beam], query: str) -> set[str]:
     return {keys[entity.id()] for entity in found if entity.id() in keys}
 
 
-def _require_known_classes(opened: Opened, tree: Any, place: str) -> None:
+def _require_known_classes(opened: OpenedModel, tree: Any, place: str) -> None:
     import ifcopenshell
 
     schema = ifcopenshell.schema_by_name(opened.file.schema_identifier)

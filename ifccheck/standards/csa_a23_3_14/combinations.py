@@ -145,16 +145,9 @@ def _not_covered(found: list[Combination]) -> list[Combination]:
     """The combinations without those that are equal to another one or covered by it."""
     kept: list[Combination] = []
     for index, one in enumerate(found):
-        if not any(_covers(other, one) for other in (*kept, *found[index + 1 :])):
+        if not any(other.covers(one) for other in (*kept, *found[index + 1 :])):
             kept.append(one)
     return kept
-
-
-def _covers(other: Combination, one: Combination) -> bool:
-    return all(
-        other.factors[name][0] >= unfavourable and other.factors[name][1] <= favourable
-        for name, (unfavourable, favourable) in one.factors.items()
-    )
 
 
 def _service(cases: Sequence[Case]) -> Combination:
