@@ -5,6 +5,9 @@ from __future__ import annotations
 import math
 import random
 import re
+import subprocess
+import sys
+import textwrap
 from pathlib import Path
 from typing import Any
 
@@ -302,6 +305,46 @@ def test_queries_that_are_wrong_are_errors_of_the_brief(
     with pytest.raises(BriefError, match=re.escape(words)) as error:
         select(opened, model.beams, None, query)
     assert "\n" not in str(error.value)
+
+
+CLASSES = (
+    "IfcBeam", " IfcBeam\n", "IfcBEAM", "IfcBeamStandardCase", "IfcBuildingElement", "IfcElement",
+    "IfcProduct", "IfcRoot", "IfcColumn", "IfcLabel", "IfcElementCompositionEnum",
+)  # fmt: skip
+
+
+@pytest.mark.parametrize("query", CLASSES)
+def test_a_class_alone_reaches_what_the_selector_of_ifcopenshell_finds(query: str) -> None:
+    from ifcopenshell.util import selector
+
+    building = Building("IFC4")
+    for kind in ("IfcBeam", "IfcBeamStandardCase", "IfcBeam"):
+        solid = building.extrusion(building.rectangle(), 6000.0, z=(1, 0, 0), x=(0, 1, 0))
+        building.member(kind, solid, Name="Concrete beam")
+    opened = building.open()
+    beams = read_model(opened, {}).beams
+    candidates = {opened.file.by_id(beam.step_id) for beam in beams}
+    found = {entity.id() for entity in selector.filter_elements(opened.file, query, candidates)}
+    expected = tuple(beam.key for beam in beams if beam.step_id in found)
+    assert select(opened, beams, None, query) == expected
+
+
+def test_a_class_alone_does_not_load_the_selector() -> None:
+    script = """
+        import sys
+        from ifccheck.ifc.reader import read_model
+        from ifccheck.ifc.selection import select
+        from tests.ifc_models import Building
+        building = Building("IFC4")
+        building.member("IfcBeam", Name="Concrete beam")
+        opened = building.open()
+        model = read_model(opened, {})
+        assert len(select(opened, model.beams, None, "IfcBeam")) == 1
+        assert "ifcopenshell.util.selector" not in sys.modules
+        select(opened, model.beams, None, "IfcBeam, ! IfcColumn")
+        assert "ifcopenshell.util.selector" in sys.modules
+    """
+    subprocess.run([sys.executable, "-c", textwrap.dedent(script)], check=True)
 
 
 def test_query_without_candidates_finds_nothing(marked: tuple[Opened, Model]) -> None:

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import re
-from collections.abc import Callable, Iterator, Sequence
+from collections.abc import Callable, Iterable, Iterator, Sequence
 from typing import Any
 
 from ifccheck.beam import Beam
@@ -12,6 +12,11 @@ from ifccheck.ifc.opening import OpenedModel
 from ifccheck.units import clipped
 
 Field = Callable[[Beam], str]
+
+ONE_CLASS = re.compile(r"Ifc[A-Za-z0-9_]+")
+"""A query that is no more than the name of a class."""
+BLANKS = " \t\f\r\n"
+"""What a query may hold anywhere without a meaning."""
 
 
 def select(
@@ -79,12 +84,30 @@ def _matcher(pattern: str) -> Callable[[str], bool]:
 
 def _answer(opened: OpenedModel, beams: Sequence[Beam], query: str) -> set[str]:
     """Keys of the beams that an element query finds among the candidates."""
-    from ifcopenshell.util import selector
-    from lark.exceptions import LarkError
-
     place = f'where = "{query}"'
     if not query.strip():
         raise BriefError("where is empty: give an element query such as IfcBeam, or beams")
+    name = query.strip(BLANKS)
+    if ONE_CLASS.fullmatch(name):
+        _require_known_classes(opened, (name,), place)
+        return _of_class(opened, beams, name)
+    return _selected(opened, beams, query, place)
+
+
+def _of_class(opened: OpenedModel, beams: Sequence[Beam], name: str) -> set[str]:
+    """Keys of the beams of a class or of one under it, as ifcopenshell answers that query.
+
+    Its selector, which builds several grammars when it is loaded, is left alone.
+    """
+    samples = {beam.ifc_class: beam.step_id for beam in beams}
+    within = {one for one, step_id in samples.items() if opened.file.by_id(step_id).is_a(name)}
+    return {beam.key for beam in beams if beam.ifc_class in within}
+
+
+def _selected(opened: OpenedModel, beams: Sequence[Beam], query: str, place: str) -> set[str]:
+    from ifcopenshell.util import selector
+    from lark.exceptions import LarkError
+
     try:
         tree = selector.filter_elements_grammar.parse(query)
     except LarkError as error:
@@ -94,7 +117,7 @@ def _answer(opened: OpenedModel, beams: Sequence[Beam], query: str) -> set[str]:
             f"{place} cannot be understood{spot}: write an element query of ifcopenshell, such as"
             ' IfcBeam, location="Level 1"'
         ) from error
-    _require_known_classes(opened, tree, place)
+    _require_known_classes(opened, _classes(tree), place)
     if not beams:
         return set()  # without candidates ifcopenshell would search the whole model
     keys = {beam.step_id: beam.key for beam in beams}
@@ -109,11 +132,11 @@ def _answer(opened: OpenedModel, beams: Sequence[Beam], query: str) -> set[str]:
     return {keys[entity.id()] for entity in found if entity.id() in keys}
 
 
-def _require_known_classes(opened: OpenedModel, tree: Any, place: str) -> None:
+def _require_known_classes(opened: OpenedModel, names: Iterable[str], place: str) -> None:
     import ifcopenshell
 
     schema = ifcopenshell.schema_by_name(opened.file.schema_identifier)
-    for name in _classes(tree):
+    for name in names:
         try:
             schema.declaration_by_name(name)
         except RuntimeError as error:
