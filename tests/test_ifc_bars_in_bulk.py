@@ -177,9 +177,19 @@ def reinforcement_readers(file: Any) -> Any:
     return BarReaders(make_context(file, "IFC4"))
 
 
-def test_text_that_hides_what_it_is_is_not_followed() -> None:
-    data = ModelWithBars().file.to_string().encode().replace(b"DATA;", b"DATA; /* #1=IFCX( */")
-    assert make_step_table(data, scan(data)) is None
+def test_statements_that_hide_what_is_text_are_not_followed() -> None:
+    words = ("IFCX('a');", "/* #9=IFCX('b'); */IFCX('c');", r"IFCX('\S\'d');", "IFCX('e');")
+    text = "".join(f"#{number}={word} /* ' */" for number, word in enumerate(words, start=1))
+    table = table_of(f"{HEAD}{text}{FOOT}")
+    ids = np.array([1, 2, 3, 4, 9])
+    assert table.rows(ids).tolist() == [0, -1, -1, 1, -1]
+    assert table.rest(table.cursors(ids, "IFCX"), ids) == [b"'a');", b"", b"", b"'e');", b""]
+
+
+def test_no_table_is_made_where_no_statement_is_left() -> None:
+    for text in ("", "#1=/* x */IFCX('a');"):
+        data = f"{HEAD}{text}{FOOT}".encode()
+        assert make_step_table(data, scan(data)) is None
 
 
 @pytest.mark.parametrize(

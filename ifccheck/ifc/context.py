@@ -9,6 +9,7 @@ from ifccheck.beam import Axis, Run
 from ifccheck.ifc.placements import Placements
 from ifccheck.ifc.properties import Properties
 from ifccheck.ifc.relations import Relations, read_relations
+from ifccheck.ifc.step_table import StepTable
 from ifccheck.ifc.units import ModelUnits, read_units
 
 
@@ -23,6 +24,8 @@ class Context:
     relations: Relations
     placements: Placements
     properties: Properties
+    statements: StepTable | None = None
+    """The statements of the file, where they let the same of many be read at once."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -33,10 +36,10 @@ class BeamFrame:
     runs: tuple[Run, ...]
 
 
-def make_context(file: Any, schema: str) -> Context:
+def make_context(file: Any, schema: str, statements: StepTable | None = None) -> Context:
     """Gather what the readers of one model share."""
     units = read_units(file)
-    relations = read_relations(file)
+    relations = read_relations(file, statements)
     return Context(
         file=file,
         schema=schema,
@@ -44,4 +47,5 @@ def make_context(file: Any, schema: str) -> Context:
         relations=relations,
         placements=Placements(file, units.length, units.angle),
         properties=Properties(file, units, relations),
+        statements=statements,
     )

@@ -42,7 +42,7 @@ def read_model(
 
 
 def _read(opened: OpenedModel, mapping: Mapping[str, str], statements: StepTable | None) -> Model:
-    context = make_context(opened.file, opened.schema)
+    context = make_context(opened.file, opened.schema, statements)
     entities = opened.file.by_type("IfcBeam")
     if entities and "length" not in context.units.declared:
         raise ModelError(

@@ -4,11 +4,21 @@ from __future__ import annotations
 
 import re
 from collections import defaultdict
-from collections.abc import Iterator, Mapping, Sequence
+from collections.abc import Callable, Iterable, Iterator, Mapping, Sequence
 from dataclasses import dataclass, field
 from typing import Any
 
 from ifccheck.ifc.entity import Entity, get, label, several
+from ifccheck.ifc.statement_patterns import (
+    CLASS,
+    REFERENCE_OR_NOTHING,
+    TEXT,
+    TEXT_OR_NOTHING,
+    numbers_of,
+    references,
+    statement,
+)
+from ifccheck.ifc.step_table import StepTable
 
 Ids = tuple[int, ...]
 
@@ -83,14 +93,14 @@ class Relations:
         return own if type_id is None else own + tuple(self.sets.get(type_id, ()))
 
 
-# The ends of a relation as they are written. Making an object of each of fifty thousand bars,
-# to ask it for its id, takes as long as reading half of the beams.
-ONE_TO_MANY = re.compile(r",#(\d+),\(((?:#\d+,?)+)\)\)$")
-MANY_TO_ONE = re.compile(r",\(((?:#\d+,?)+)\),#(\d+)\)$")
-
-
-def _ids(listed: str) -> list[int]:
-    return [int(reference) for reference in listed[1:].split(",#")]
+_ROOT = (TEXT, REFERENCE_OR_NOTHING, TEXT_OR_NOTHING, TEXT_OR_NOTHING)
+_ONE, _MANY = rb"#(?P<one>\d++)", references(rb"?P<many>")
+ONE_TO_MANY = statement(CLASS, *_ROOT, _ONE, _MANY)
+MANY_TO_ONE = statement(CLASS, *_ROOT, _MANY, _ONE)
+ONE_TO_ONE = statement(CLASS, *_ROOT, _ONE, rb"(?P<many>#\d++)")
+ONE_TO_MANY_AT_END = re.compile(r",#(\d+),\(((?:#\d+,?)+)\)\)$")
+MANY_TO_ONE_AT_END = re.compile(r",\(((?:#\d+,?)+)\),#(\d+)\)$")
+"""The ends of a relation as ifcopenshell writes them."""
 
 
 @dataclass
@@ -106,13 +116,16 @@ class _Gathering:
     material_properties: dict[int, list[int]] = field(default_factory=lambda: defaultdict(list))
 
 
-def read_relations(file: Any) -> Relations:
-    """Read every relationship of a model once."""
+def read_relations(file: Any, statements: StepTable | None = None) -> Relations:
+    """Read every relationship of a model once; with its ``statements`` most from their text."""
     found = _Gathering()
+    by_class: dict[str, list[int]] = {}
     for relation in file.by_type("IfcRelationship"):
-        reader = READERS.get(relation.is_a())
-        if reader is not None:
-            reader(found, relation)
+        by_class.setdefault(relation.is_a(), []).append(relation.id())
+    for name, step_ids in by_class.items():
+        if name in READERS:
+            for step_id in _left_of(found, statements, name, step_ids):
+                READERS[name](found, file.by_id(step_id))
     _read_type_sets(found, file)
     _read_material_properties(found, file)
     return Relations(
@@ -128,39 +141,93 @@ def read_relations(file: Any) -> Relations:
     )
 
 
+def _left_of(
+    found: _Gathering, statements: StepTable | None, name: str, step_ids: Sequence[int]
+) -> Sequence[int]:
+    """Read relationships of a class from their text; returns those that are not plain.
+
+    Making an object of each of fifty thousand bars, to ask it for its id, takes as long as reading
+    half of the beams.
+    """
+    if statements is None or name not in PLAIN:
+        return step_ids
+    pattern, add = PLAIN[name]
+    left: list[int] = []
+    for step_id, match in zip(step_ids, statements.matches(step_ids, pattern), strict=True):
+        if match is None:
+            left.append(step_id)
+        else:
+            add(found, int(match["one"]), numbers_of(match["many"]))
+    return left
+
+
+def _keep_first(known: dict[int, int], elements: Sequence[int], one: int) -> None:
+    """Relate elements to one; of several that a model relates to an element the first counts."""
+    if known.keys().isdisjoint(elements):  # then it goes without a step in Python for each
+        known.update(dict.fromkeys(elements, one))
+    else:
+        for element in elements:
+            known.setdefault(element, one)
+
+
+def _add_parts(found: _Gathering, whole: int, parts: Sequence[int]) -> None:
+    found.parts[whole] += parts
+    _keep_first(found.wholes, parts, whole)
+
+
+def _add_contained(found: _Gathering, structure: int, elements: Sequence[int]) -> None:
+    _keep_first(found.containers, elements, structure)
+
+
+def _add_typed(found: _Gathering, type_id: int, elements: Sequence[int]) -> None:
+    _keep_first(found.types, elements, type_id)
+
+
+def _add_made_of(found: _Gathering, material: int, elements: Sequence[int]) -> None:
+    _keep_first(found.materials, elements, material)
+
+
+def _add_set(found: _Gathering, set_id: int, elements: Sequence[int]) -> None:
+    for element in elements:
+        found.sets[element].append(set_id)
+
+
+def _add_opening(found: _Gathering, element: int, openings: Sequence[int]) -> None:
+    found.openings[element] += openings
+
+
+def _add_projection(found: _Gathering, element: int, features: Sequence[int]) -> None:
+    found.projections[element] += features
+
+
+def _ids(entities: Iterable[Entity] | None) -> list[int]:
+    return [entity.id() for entity in entities or ()]
+
+
 def _read_parts(found: _Gathering, relation: Entity) -> None:
-    match = ONE_TO_MANY.search(relation.to_string())
-    if match is None:
-        if relation.get_argument(4) and relation.get_argument(5):
-            raise ValueError(f"{label(relation)} relates what is no instance")
-        return
-    whole, related = int(match[1]), _ids(match[2])
-    found.parts[whole] += related
-    for part in related:
-        found.wholes.setdefault(part, whole)
+    match = ONE_TO_MANY_AT_END.search(relation.to_string())
+    if match is not None:
+        _add_parts(found, int(match[1]), numbers_of(match[2].encode()))
+    elif relation.get_argument(4) and relation.get_argument(5):
+        raise ValueError(f"{label(relation)} relates what is no instance")
 
 
 def _read_container(found: _Gathering, relation: Entity) -> None:
     structure = get(relation, "RelatingStructure")
     if structure is not None:
-        for element in several(relation, "RelatedElements"):
-            found.containers.setdefault(element.id(), structure.id())
+        _add_contained(found, structure.id(), _ids(get(relation, "RelatedElements")))
 
 
 def _read_type(found: _Gathering, relation: Entity) -> None:
     relating = relation.get_argument(5)
     if relating is not None:
-        type_id = relating.id()
-        for element in relation.get_argument(4) or ():
-            found.types.setdefault(element.id(), type_id)
+        _add_typed(found, relating.id(), _ids(relation.get_argument(4)))
 
 
 def _read_material(found: _Gathering, relation: Entity) -> None:
-    match = MANY_TO_ONE.search(relation.to_string())
+    match = MANY_TO_ONE_AT_END.search(relation.to_string())
     if match is not None:
-        material = int(match[2])
-        for element in _ids(match[1]):
-            found.materials.setdefault(element, material)
+        _add_made_of(found, int(match[2]), numbers_of(match[1].encode()))
 
 
 def _read_sets(found: _Gathering, relation: Entity) -> None:
@@ -168,24 +235,25 @@ def _read_sets(found: _Gathering, relation: Entity) -> None:
     if relating is None:
         return
     # IFC4 lets one relation carry a set of definitions, wrapped in a defined type (id 0)
-    sets = [relating.id()] if relating.id() else [entity.id() for entity in relating[0]]
-    for element in relation.get_argument(4) or ():
-        found.sets[element.id()].extend(sets)
+    sets = [relating.id()] if relating.id() else _ids(relating[0])
+    elements = _ids(relation.get_argument(4))
+    for set_id in sets:
+        _add_set(found, set_id, elements)
 
 
 def _read_opening(found: _Gathering, relation: Entity) -> None:
     element, opening = relation.get_argument(4), relation.get_argument(5)
     if element is not None and opening is not None:
-        found.openings[element.id()].append(opening.id())
+        _add_opening(found, element.id(), (opening.id(),))
 
 
 def _read_projection(found: _Gathering, relation: Entity) -> None:
     element, feature = relation.get_argument(4), relation.get_argument(5)
     if element is not None and feature is not None:
-        found.projections[element.id()].append(feature.id())
+        _add_projection(found, element.id(), (feature.id(),))
 
 
-READERS = {
+READERS: Mapping[str, Callable[[_Gathering, Entity], None]] = {
     "IfcRelAggregates": _read_parts,
     "IfcRelNests": _read_parts,
     "IfcRelContainedInSpatialStructure": _read_container,
@@ -195,6 +263,18 @@ READERS = {
     "IfcRelOverridesProperties": _read_sets,
     "IfcRelVoidsElement": _read_opening,
     "IfcRelProjectsElement": _read_projection,
+}
+
+Add = Callable[[_Gathering, int, Sequence[int]], None]
+PLAIN: Mapping[str, tuple[re.Pattern[bytes], Add]] = {
+    "IfcRelAggregates": (ONE_TO_MANY, _add_parts),
+    "IfcRelNests": (ONE_TO_MANY, _add_parts),
+    "IfcRelContainedInSpatialStructure": (MANY_TO_ONE, _add_contained),
+    "IfcRelDefinesByType": (MANY_TO_ONE, _add_typed),
+    "IfcRelAssociatesMaterial": (MANY_TO_ONE, _add_made_of),
+    "IfcRelDefinesByProperties": (MANY_TO_ONE, _add_set),
+    "IfcRelVoidsElement": (ONE_TO_ONE, _add_opening),
+    "IfcRelProjectsElement": (ONE_TO_ONE, _add_projection),
 }
 
 
