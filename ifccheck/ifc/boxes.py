@@ -2,7 +2,8 @@
 
 from __future__ import annotations
 
-from dataclasses import replace
+from collections.abc import Sequence
+from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING
 
 import numpy as np
@@ -34,6 +35,9 @@ FILLED = 0.98
 
 UPRIGHT = 0.9999
 """Least z of the unit vector of what stands upright."""
+
+
+Axes = tuple[Triple, Triple, Triple]
 
 
 class Boxes:
@@ -76,15 +80,8 @@ class Boxes:
             item = need(item, "FirstOperand")
         if item.is_a() != "IfcExtrudedAreaSolid":
             return None
-        prism = extrusion(self._context, self._profiles, placed[0]._replace(item=item))
-        if min(abs(prism.axes[2][2]), abs(unit(prism.along)[2])) < UPRIGHT:
-            return None
-        low_x, high_x, low_y, high_y = prism.profile.extent
-        ring = prism.profile.rings[0]
-        filled = abs(signed_area(ring.tolist())) / ((high_x - low_x) * (high_y - low_y))
-        if filled > FILLED:
-            return ()
-        return tuple((float(x), float(y)) for x, y, _ in prism.placed(ring))
+        body = placed[0]._replace(item=item)
+        return plan_of_prism(extrusion(self._context, self._profiles, body))
 
     def _item(self, placed: Placed) -> tuple[Cloud, Matrix | None]:
         """Corners of an item in the building, and its own axes where it has some."""
@@ -132,15 +129,47 @@ class Boxes:
         return self._points[step_id]
 
 
-def own_axes(prism: Prism) -> tuple[Triple, Triple, Triple]:
+def plan_of_prism(prism: Prism) -> Ring | None:
+    """Return the outer ring in plan of an upright extrusion, empty where it fills its box; None
+    for one that does not stand upright."""
+    if min(abs(prism.axes[2][2]), abs(unit(prism.along)[2])) < UPRIGHT:
+        return None
+    low_x, high_x, low_y, high_y = prism.profile.extent
+    ring = prism.profile.rings[0]
+    filled = abs(signed_area(ring.tolist())) / ((high_x - low_x) * (high_y - low_y))
+    if filled > FILLED:
+        return ()
+    return tuple((float(x), float(y)) for x, y, _ in prism.placed(ring))
+
+
+def own_axes(prism: Prism) -> Axes:
     """Return the axes of an extrusion: along its profile's longest side, and square to that."""
     x, y, normal = prism.axes
     side = combined((x, y), prism.profile.longest_side)
     return side, cross(normal, side), normal
 
 
+@dataclass(frozen=True, slots=True)
+class BoxShape:
+    """All of the box round an extrusion but where the origin of its matrix stands."""
+
+    axes: Axes
+    middle: Triple
+    """From that origin, along the building's axes [mm]."""
+    half: Triple
+
+    def at(self, origin: Sequence[float]) -> Box:
+        """Return the box where that origin stands at a place in the building."""
+        return Box(rounded(added(origin, self.middle)), self.axes, self.half)
+
+
 def box_of_prism(prism: Prism) -> Box:
     """Return the box round an extrusion without its cuts."""
+    return box_shape(prism).at(prism.matrix[:3, 3].tolist())
+
+
+def box_shape(prism: Prism) -> BoxShape:
+    """Return the shape of the box round an extrusion without its cuts."""
     axes = own_axes(prism)
     low_x, high_x, low_y, high_y = prism.profile.extent
     low, high = [low_x, low_y, 0.0], [high_x, high_y, 0.0]
@@ -152,9 +181,8 @@ def box_of_prism(prism: Prism) -> Box:
             high[number] += reach
     middle = [(a + b) / 2.0 for a, b in zip(low, high, strict=True)]
     half = [(b - a) / 2.0 for a, b in zip(low, high, strict=True)]
-    centre = added(prism.matrix[:3, 3].tolist(), combined(axes, middle))
     x, y, z = (rounded(axis) for axis in axes)
-    return Box(rounded(centre), (x, y, z), rounded(half))
+    return BoxShape((x, y, z), combined(axes, middle), rounded(half))
 
 
 def box_round(cloud: Cloud, axes: Matrix) -> Box:

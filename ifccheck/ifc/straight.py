@@ -73,26 +73,64 @@ class _Member:
         """Return a vector of the building in the member's axes."""
         return _inner(self.axes, vector)
 
-    def outer(self, local: Sequence[float]) -> Triple:
-        """Return a place in the member's axes, in the building, without noise."""
-        return rounded(added(self.base, combined(self.axes, local)))
+
+@dataclass(frozen=True, slots=True)
+class StraightShape:
+    """All of a straight member but where its base point stands: many members share one."""
+
+    axes: Axes
+    """Without noise."""
+    origin: Triple
+    """Start of the axis, from the base point along the building's axes [mm]."""
+    middle: Triple
+    """Centre of the box, likewise."""
+    half: Triple
+    length: float
+    outline: Outline
+    oblique: tuple[float, float]
+    steep: tuple[bool, bool]
+
+    def at(self, base: Sequence[float]) -> Straight:
+        """Return the member whose base point stands at a place in the building."""
+        x, y, z = self.axes
+        return Straight(
+            axis=Axis(rounded(added(base, self.origin)), x, y, z, self.length),
+            outline=self.outline,
+            box=Box(rounded(added(base, self.middle)), self.axes, self.half),
+            oblique=self.oblique,
+            steep=self.steep,
+        )
 
 
 def straighten(prism: Prism, placement: Matrix) -> Straight:
     """Return a prism as a straight member; raises UnreadableError where it is none."""
+    elevation = _spanning_elevation(prism)
+    if elevation is None:
+        member = _along_extrusion(prism, placement)
+    else:
+        member = _along_elevation(prism, elevation, placement)
+    return _shape(member, _cut_planes(prism, member)).at(member.base)
+
+
+def shape_along_extrusion(prism: Prism, placement: Matrix) -> StraightShape | None:
+    """Return the shape of an uncut prism that spans along its extrusion, from the origin of its
+    matrix; None for one that spans along its profile. Raises UnreadableError as ``straighten``.
+    """
+    if _spanning_elevation(prism) is not None:
+        return None
+    return _shape(_along_extrusion(prism, placement), ())
+
+
+def _spanning_elevation(prism: Prism) -> Elevation | None:
+    """The profile's elevation where the span runs along it, None where along the extrusion."""
     length = size(prism.along)
     elevation = prism.profile.elevation
     if elevation is None:
         if length < prism.profile.diameter:
             raise UnreadableError(VARIES)
-        member = _along_extrusion(prism, placement)
-    else:
-        _require_clear(length, elevation.length, elevation.depth)
-        if elevation.length > length:
-            member = _along_elevation(prism, elevation, placement)
-        else:
-            member = _along_extrusion(prism, placement)
-    return _finished(member, _cut_planes(prism, member))
+        return None
+    _require_clear(length, elevation.length, elevation.depth)
+    return elevation if elevation.length > length else None
 
 
 def _require_clear(length: float, side: float, depth: float) -> None:
@@ -172,7 +210,7 @@ def _cut_planes(prism: Prism, member: _Member) -> tuple[Plane, ...]:
     )
 
 
-def _finished(member: _Member, cuts: tuple[Plane, ...]) -> Straight:
+def _shape(member: _Member, cuts: tuple[Plane, ...]) -> StraightShape:
     section, planes = member.section, member.planes + cuts
     starts, ends = _reach(planes, section.corners)
     length = ends[-1] - starts[-1]
@@ -185,13 +223,16 @@ def _finished(member: _Member, cuts: tuple[Plane, ...]) -> Straight:
     low, high = (first, *section.low), (last, *section.high)
     _require_finite((*low, *high, length))
     origin = (starts[-1], (low[1] + high[1]) / 2.0, low[2])
-    middle = [(a + b) / 2.0 for a, b in zip(low, high, strict=True)]
-    half = [(b - a) / 2.0 for a, b in zip(low, high, strict=True)]
+    middle = scaled(added(low, high), 0.5)
+    half = scaled(added(high, scaled(low, -1.0)), 0.5)
     x, y, z = (rounded(axis) for axis in member.axes)
-    return Straight(
-        axis=Axis(member.outer(origin), x, y, z, round(length, 6)),
+    return StraightShape(
+        axes=(x, y, z),
+        origin=combined(member.axes, origin),
+        middle=combined(member.axes, middle),
+        half=rounded(half),
+        length=round(length, 6),
         outline=section.outline,
-        box=Box(member.outer(middle), (x, y, z), rounded(half)),
         oblique=oblique,
         steep=_steep(planes, section.corners, starts, ends),
     )
