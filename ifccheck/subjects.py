@@ -3,8 +3,9 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Mapping, Sequence
-from dataclasses import dataclass, field, replace
+from collections.abc import Callable, Mapping, Sequence, Set
+from dataclasses import dataclass, field
+from functools import lru_cache
 from typing import TypeVar
 
 from ifccheck.beam import (
@@ -34,7 +35,7 @@ from ifccheck.brief.statements import (
     statements,
 )
 from ifccheck.brief.supports import resolve_supports, stated_ends
-from ifccheck.detailing import choose_source, lay_out
+from ifccheck.detailing import Layout, choose_source, lay_out
 from ifccheck.frame.carrying import contacts_of, pressed_ends
 from ifccheck.frame.reactions import loaded_from_side, unknown_reactions
 from ifccheck.frame.spans import Standing, stand_alone
@@ -48,6 +49,8 @@ _CRANE = "crane loads stand where the brief puts them: they are not moved, and c
 _LAYOUT_AGGREGATE = 20.0
 _WEIGHT_OF_DENSITY = 9.80665e-9
 """Unit weight [N/mm3] for each kg/m3, at standard gravity."""
+_NO_MATERIAL = MaterialStatement()
+_NO_STATEMENT = BeamStatement()
 _THROUGH_THE_WEB = "loads are assumed to act through the web: torsion is not checked"
 
 
@@ -94,6 +97,9 @@ class _Sources:
     defaults: MaterialStatement
     supports: Mapping[str, tuple[Support, Support] | Reason]
     support_remarks: Mapping[str, Sequence[Remark]]
+    unit_weight: Given
+    """By the brief [N/mm3]"""
+    crane_cases: Set[str]
 
 
 def gather(model: Model, brief: Brief, matches: Matches, standard: Standard) -> Gathered:
@@ -111,6 +117,8 @@ def gather(model: Model, brief: Brief, matches: Matches, standard: Standard) -> 
         defaults=default_materials(brief),
         supports=supports,
         support_remarks=_by_beam(remarks),
+        unit_weight=Given(brief.basis.concrete_unit_weight, "brief, basis.concrete_unit_weight"),
+        crane_cases={case.name for case in brief.cases if case.nature == "crane"},
     )
     standing = {
         key: stand_alone(beams[key], pair, contacts.get(key, ()), _stated_span(sources, key))
@@ -148,11 +156,12 @@ def _one(
     beam: Beam, sources: _Sources, standing: Standing | None, loads: Sequence[Load]
 ) -> Subject | Unrated:
     findings = _Findings(beam.key, list(beam.reasons), list(beam.remarks))
-    statement = sources.statements.get(beam.key, BeamStatement())
+    statement = sources.statements.get(beam.key, _NO_STATEMENT)
+    stated = _stated(statement)
+    contacts = sources.contacts.get(beam.key, ())
     findings.remarks += [*sources.support_remarks.get(beam.key, ()), *statement.remarks]
     findings.remarks += [
-        Remark(beam.key, "brief", f"the engineer states: {text}", "assumption")
-        for text in _stated(statement)
+        Remark(beam.key, "brief", f"the engineer states: {text}", "assumption") for text in stated
     ]
     concrete = _concrete(beam, sources, findings)
     if standing is None and beam.axis:
@@ -172,11 +181,9 @@ def _one(
         line=standing.line,
         faces=standing.faces,
         span_source=standing.source,
-        direct=pressed_ends(sources.contacts.get(beam.key, ())),
-        side_loaded=loaded_from_side(
-            sources.contacts.get(beam.key, ()), beam.length, standing.bearings
-        ),
-        statements=_stated(statement),
+        direct=pressed_ends(contacts),
+        side_loaded=loaded_from_side(contacts, beam.length, standing.bearings),
+        statements=stated,
         bars=steel.bars,
         stirrups=steel.stirrups,
         stirrups_known=steel.stirrups_known,
@@ -219,27 +226,24 @@ class _Concrete:
     unit_weight: Given
 
 
-def _first(*given: Given | None) -> Given | None:
-    for each in given:
-        if each is not None:
-            return each
-    return None
-
-
 def _concrete(beam: Beam, sources: _Sources, findings: _Findings) -> _Concrete:
-    stated = sources.materials.get(beam.key, MaterialStatement())
+    stated = sources.materials.get(beam.key, _NO_MATERIAL)
     findings.remarks += stated.remarks
     strength = _strength(beam, stated, sources, findings)
-    density = _first(stated.density, beam.concrete_density)
-    factor = sources.standard.density_factor(density.value if density else None)
+    density = stated.density or beam.concrete_density
     return _Concrete(
         strength=findings.assume("concrete strength", strength),
-        density_factor=Given(
-            factor, density.source if density else "normal density", assumed=density is None
-        ),
+        density_factor=_density_factor(density, sources.standard.density_factor),
         aggregate_size=_aggregate(stated, sources, findings),
-        unit_weight=_unit_weight(_first(stated.density, beam.greatest_density), sources, findings),
+        unit_weight=_unit_weight(stated.density or beam.greatest_density, sources, findings),
     )
+
+
+@lru_cache(maxsize=256)
+def _density_factor(density: Given | None, factor_of: Callable[[float | None], float]) -> Given:
+    if density is None:
+        return Given(factor_of(None), "normal density", assumed=True)
+    return Given(factor_of(density.value), density.source)
 
 
 def _unit_weight(density: Given | None, sources: _Sources, findings: _Findings) -> Given:
@@ -247,7 +251,7 @@ def _unit_weight(density: Given | None, sources: _Sources, findings: _Findings) 
 
     A lesser density changes nothing: the brief's figure holds the weight of the steel too.
     """
-    brief = Given(sources.brief.basis.concrete_unit_weight, "brief, basis.concrete_unit_weight")
+    brief = sources.unit_weight
     if density is None or density.value * _WEIGHT_OF_DENSITY <= brief.value:
         return brief
     stated = Given(density.value * _WEIGHT_OF_DENSITY, density.source)
@@ -270,9 +274,7 @@ def _strength(
     if stated.concrete_strength is None and beam.strength_reason is not None:
         findings.reasons.append(beam.strength_reason)
         return Given(math.nan, "not read")
-    given = _first(
-        stated.concrete_strength, beam.concrete_strength, sources.defaults.concrete_strength
-    )
+    given = stated.concrete_strength or beam.concrete_strength or sources.defaults.concrete_strength
     if given is None:
         findings.refuse(
             "concrete strength unknown: neither the model nor the brief gives one (write"
@@ -284,7 +286,7 @@ def _strength(
 
 def _aggregate(stated: MaterialStatement, sources: _Sources, findings: _Findings) -> Given:
     """Size of the aggregate; where no one gives it, checks that need it cannot be made."""
-    size = _first(stated.aggregate_size, sources.defaults.aggregate_size)
+    size = stated.aggregate_size or sources.defaults.aggregate_size
     if size is None:
         return Given(math.nan, "not given in the brief (defaults.aggregate_size)")
     return findings.assume("largest aggregate", size)
@@ -301,25 +303,29 @@ class _Steel:
     source: str
     bar_yield: tuple[Given, ...]
     stirrup_yield: tuple[Given, ...]
-    silent: tuple[Face, ...] = ()
+    silent: tuple[Face, ...]
 
 
 def _steel(beam: Beam, sources: _Sources, findings: _Findings) -> _Steel | None:
-    stated = sources.materials.get(beam.key, MaterialStatement())
+    stated = sources.materials.get(beam.key, _NO_MATERIAL)
     chosen = choose_source(beam, sources.brief.sources)
     findings.remarks += chosen.remarks
     findings.reasons += chosen.reasons
     if chosen.reinforcement is None:
         return None
-    found = _placed(beam, chosen.reinforcement, sources, stated, findings)
-    yields = (
-        _yields(found.bars, stated.bar_yield, sources.defaults.bar_yield, "bars", findings),
-        _yields(
-            found.stirrups, stated.stirrup_yield, sources.defaults.stirrup_yield, "stirrups",
-            findings,
+    placed = _placed(beam, chosen.reinforcement, sources, stated, findings)
+    defaults = sources.defaults
+    return _Steel(
+        bars=placed.bars,
+        stirrups=placed.stirrups,
+        stirrups_known=placed.stirrups_known,
+        source=chosen.reinforcement.source,
+        bar_yield=_yields(placed.bars, stated.bar_yield, defaults.bar_yield, "bars", findings),
+        stirrup_yield=_yields(
+            placed.stirrups, stated.stirrup_yield, defaults.stirrup_yield, "stirrups", findings
         ),
-    )  # fmt: skip
-    return replace(found, bar_yield=yields[0], stirrup_yield=yields[1])
+        silent=placed.silent,
+    )
 
 
 def _placed(
@@ -328,32 +334,30 @@ def _placed(
     sources: _Sources,
     stated: MaterialStatement,
     findings: _Findings,
-) -> _Steel:
+) -> Layout:
     """Bars and stirrups by place: as modelled, or laid out from a description."""
     if not reinforcement.zones:
         if reinforcement.bars and not reinforcement.stirrups:
             text = "no stirrups are modelled: none are counted on"
             findings.remarks.append(Remark(beam.key, "reinforcement", text, "doubt"))
-        modelled = reinforcement.source
-        return _Steel(reinforcement.bars, reinforcement.stirrups, True, modelled, (), ())
+        return Layout(reinforcement.bars, reinforcement.stirrups)
     size = _aggregate_for_layout(stated, sources, findings)
     laid = lay_out(
         beam,
         reinforcement.zones,
         clear_spacing=lambda diameter: sources.standard.clear_spacing(diameter, size),
         stated_cover=stated.cover,
-        fallback_cover=_first(beam.cover, sources.defaults.cover),
+        fallback_cover=beam.cover or sources.defaults.cover,
     )
     findings.remarks += laid.remarks
     findings.reasons += laid.reasons
-    found = _Steel(laid.bars, laid.stirrups, laid.stirrups_known, reinforcement.source, (), ())
-    return replace(found, silent=laid.silent)
+    return laid
 
 
 def _aggregate_for_layout(
     stated: MaterialStatement, sources: _Sources, findings: _Findings
 ) -> float:
-    size = _first(stated.aggregate_size, sources.defaults.aggregate_size)
+    size = stated.aggregate_size or sources.defaults.aggregate_size
     if size is not None:
         return size.value
     text = f"bars laid out for aggregate of {_LAYOUT_AGGREGATE:g} mm: the brief gives no size"
@@ -369,14 +373,13 @@ def _yields(
     findings: _Findings,
 ) -> tuple[Given, ...]:
     """Yield strength of each set: the brief's statement, the model's, the brief's default."""
-    found = [_first(stated, each.yield_strength, default) for each in steel]
-    if any(each is None for each in found):
+    given = [each for bar in steel if (each := stated or bar.yield_strength or default)]
+    if len(given) < len(steel):
         findings.refuse(f"yield strength of the {what} unknown: neither model nor brief gives one")
         return ()
-    given = tuple(each for each in found if each is not None)
-    for each in dict.fromkeys(given):
-        findings.assume(f"yield strength of the {what}", each)
-    return given
+    for assumed in dict.fromkeys([each for each in given if each.assumed]):
+        findings.assume(f"yield strength of the {what}", assumed)
+    return tuple(given)
 
 
 # Loads and supports ------------------------------------------------------------------------------
@@ -401,8 +404,7 @@ def _judge_loads(
         findings.refuse("torsion: it is not checked", blocking=False)
     else:
         findings.remarks.append(Remark(beam.key, "demand", _THROUGH_THE_WEB, "assumption"))
-    natures = {case.name: case.nature for case in sources.brief.cases}
-    if any(natures.get(load.case) == "crane" for load in loads):
+    if sources.crane_cases and any(load.case in sources.crane_cases for load in loads):
         findings.remarks.append(Remark(beam.key, "demand", _CRANE, "assumption"))
     if standing and not statement.loads_complete:
         contacts = sources.contacts.get(beam.key, ())

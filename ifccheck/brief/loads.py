@@ -49,7 +49,8 @@ def _load(
     brief: Brief, entry: LoadEntry, beam: Beam, span: Span | None, contacts: Sequence[Contact]
 ) -> Load:
     stretch = _stretch(brief, entry, beam, span, contacts)
-    first, last = (value * _projection(entry, beam) for value in entry.values)
+    projection = _projection(entry, beam)
+    first, last = entry.values[0] * projection, entry.values[1] * projection
     return Load(
         beam=beam.key,
         case=entry.case,

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
+from functools import lru_cache
 from typing import Literal
 
 from ifccheck.beam import Beam, Contact, Reason, Remark, Support, SupportKind
@@ -136,7 +137,12 @@ def _end(
         return Reason(
             f"supports unknown: neither [[supports]] nor defaults.supports speaks of its {end}"
         )
-    return Support(brief.defaults.supports[0 if end == "start" else 1], bearing, DEFAULT)
+    return _by_default(brief.defaults.supports[0 if end == "start" else 1], bearing)
+
+
+@lru_cache(maxsize=256)
+def _by_default(kind: SupportKind, bearing: float) -> Support:
+    return Support(kind, bearing, DEFAULT)
 
 
 def _nothing_holds(end: End, touching: Sequence[Contact]) -> Reason | None:

@@ -38,9 +38,7 @@ def choose_source(beam: Beam, order: Sequence[SourceName]) -> Chosen:
     What a source could not read makes the beam not rated where that source is the one taken,
     or where no source speaks at all; otherwise it is a remark.
     """
-    found = sorted(
-        (r for r in beam.reinforcement if r.source in order), key=lambda r: order.index(r.source)
-    )
+    found = [r for source in order for r in beam.reinforcement if r.source == source]
     speaking = [r for r in found if _speaks(r)]
     if not speaking:
         reasons = tuple(reason for r in found for reason in r.reasons)
@@ -67,7 +65,9 @@ def _nothing(beam: Beam) -> str:
 
 
 def _speaks(reinforcement: Reinforcement) -> bool:
-    zones = any(
+    if reinforcement.bars or reinforcement.stirrups:
+        return True
+    return any(
         zone.top is not None
         or zone.bottom is not None
         or zone.side is not None
@@ -75,7 +75,6 @@ def _speaks(reinforcement: Reinforcement) -> bool:
         or zone.no_stirrups
         for zone in reinforcement.zones
     )
-    return bool(reinforcement.bars or reinforcement.stirrups or zones)
 
 
 @dataclass(frozen=True, slots=True)

@@ -2,9 +2,11 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
-from dataclasses import dataclass, fields
-from typing import Self
+import math
+from collections.abc import Iterable, Sequence
+from dataclasses import dataclass
+from functools import lru_cache
+from itertools import chain
 
 import numpy as np
 import numpy.typing as npt
@@ -21,6 +23,9 @@ _EDGES = np.array([[a, a | bit] for bit in (1, 2, 4) for a in range(8) if not a 
 
 _PARALLEL = 1e-12
 
+_BLOCK = 1024
+"""Pairs of boxes worked out together: so many stay in the processor's own memory"""
+
 
 @dataclass(frozen=True, slots=True)
 class Boxes:
@@ -33,27 +38,22 @@ class Boxes:
     half: Floats
     """Half extents along them [mm] (M, 3)"""
 
-    def take(self, rows: Ints) -> Self:
+    def take(self, rows: Ints) -> Boxes:
         """The boxes of the given rows."""
-        return type(self)(*(getattr(self, f.name)[rows] for f in fields(self)))
+        return Boxes(self.centre[rows], self.axes[rows], self.half[rows])
 
     def grown(self, distance: float) -> Boxes:
         """The boxes with every face moved outward."""
         return Boxes(self.centre, self.axes, self.half + distance)
 
-    def corners(self) -> Floats:
-        """(M, 8, 3)"""
-        offsets = np.einsum("sk,mk,mkd->msd", _SIGNS, self.half, self.axes)
-        return np.asarray(self.centre[:, None, :] + offsets)
-
 
 def member_boxes(members: Sequence[Member]) -> Boxes:
     """Boxes of members, in their order."""
-    count = len(members)
+    boxes = [member.box for member in members]
     return Boxes(
-        np.array([member.box.centre for member in members], np.float64).reshape(count, 3),
-        np.array([member.box.axes for member in members], np.float64).reshape(count, 3, 3),
-        np.array([member.box.half for member in members], np.float64).reshape(count, 3),
+        _numbers(chain.from_iterable(box.centre for box in boxes), len(boxes), 3),
+        _numbers(chain.from_iterable(chain(*box.axes) for box in boxes), len(boxes), 3, 3),
+        _numbers(chain.from_iterable(box.half for box in boxes), len(boxes), 3),
     )
 
 
@@ -64,23 +64,37 @@ def beam_boxes(beams: Sequence[Beam]) -> Boxes:
     """
     count = len(beams)
     axes = [beam.axis for beam in beams if beam.axis is not None]
-    frame = np.array([(axis.x, axis.y, axis.z) for axis in axes], np.float64).reshape(count, 3, 3)
-    origin = np.array([axis.origin for axis in axes], np.float64).reshape(count, 3)
-    ranges = np.array([_ranges(beam) for beam in beams], np.float64).reshape(count, 3, 2)
+    frame = _numbers(chain.from_iterable((*a.x, *a.y, *a.z) for a in axes), count, 3, 3)
+    origin = _numbers(chain.from_iterable(axis.origin for axis in axes), count, 3)
+    ranges = _numbers(chain.from_iterable(map(_ranges, beams)), count, 3, 2)
     middle, half = ranges.mean(axis=2), np.ptp(ranges, axis=2) / 2.0
     return Boxes(origin + np.einsum("mk,mkd->md", middle, frame), frame, half)
 
 
-def _ranges(beam: Beam) -> tuple[tuple[float, float], ...]:
+def _numbers(values: Iterable[float], *shape: int) -> Floats:
+    return np.fromiter(values, np.float64, math.prod(shape)).reshape(shape)
+
+
+def _ranges(beam: Beam) -> tuple[float, ...]:
     """What a beam's body covers along x, y and z of its own axes."""
-    outlines: list[Outline] = []
-    for run in beam.runs:
-        outlines.append(run.outline)
-        if run.outline_end is not None:
-            outlines.append(run.outline_end)
-    points = [point for outline in outlines for ring in outline.rings for point in ring]
-    ys, zs = [y for y, _ in points], [z for _, z in points]
-    return (0.0, beam.length), (min(ys), max(ys)), (min(zs), max(zs))
+    return 0.0, beam.length, *section_extent(beam)
+
+
+def section_extent(beam: Beam) -> tuple[float, float, float, float]:
+    """Least and greatest y, then z, of all outlines along a beam with runs [mm]."""
+    found = [extent_of(run.outline) for run in beam.runs]
+    found += [extent_of(run.outline_end) for run in beam.runs if run.outline_end is not None]
+    if len(found) == 1:
+        return found[0]
+    y_low, y_high, z_low, z_high = zip(*found, strict=True)
+    return min(y_low), max(y_high), min(z_low), max(z_high)
+
+
+@lru_cache(maxsize=4096)
+def extent_of(outline: Outline) -> tuple[float, float, float, float]:
+    """Least and greatest y, then least and greatest z, of an outline [mm]."""
+    ys, zs = zip(*(point for ring in outline.rings for point in ring), strict=True)
+    return min(ys), max(ys), min(zs), max(zs)
 
 
 def near_pairs(first: Boxes, second: Boxes) -> tuple[Ints, Ints]:
@@ -117,6 +131,13 @@ def _apart_along(a: Boxes, b: Boxes) -> Bools:
     return np.asarray((distance > reach).any(axis=1))
 
 
+def holds(outer: Boxes, inner: Boxes) -> Bools:
+    """Whether each inner box lies wholly in its outer one (P)."""
+    distance = np.abs(np.einsum("pkd,pd->pk", outer.axes, inner.centre - outer.centre))
+    reach = np.einsum("pj,pkj->pk", inner.half, np.abs(_turn(outer, inner)))
+    return np.asarray((distance + reach <= outer.half).all(axis=1))
+
+
 def _turn(a: Boxes, b: Boxes) -> Floats:
     """Axes of b in those of a: row k, column j is axis k of a along axis j of b (P, 3, 3)."""
     return np.asarray(np.einsum("pkd,pjd->pkj", a.axes, b.axes))
@@ -138,6 +159,16 @@ def overlaps(a: Boxes, b: Boxes) -> Floats:
     turn = np.ascontiguousarray(_turn(a, b).transpose(1, 2, 0))
     offset = np.ascontiguousarray(np.einsum("pkd,pd->kp", a.axes, b.centre - a.centre))
     half_a, half_b = np.ascontiguousarray(a.half.T), np.ascontiguousarray(b.half.T)
+    covered = np.empty((len(a.half), 3, 2))
+    for first in range(0, len(a.half), _BLOCK):
+        block = slice(first, first + _BLOCK)
+        covered[block] = _common_extent(
+            half_a[:, block], half_b[:, block], turn[..., block], offset[:, block]
+        )
+    return covered
+
+
+def _common_extent(half_a: Floats, half_b: Floats, turn: Floats, offset: Floats) -> Floats:
     signs = _SIGNS.T[:, :, None]
     corners_b = _from_second(signs * half_b[:, None, :], turn, offset)
     corners_a = _turned(signs * half_a[:, None, :] - offset[:, None, :], turn.swapaxes(0, 1))

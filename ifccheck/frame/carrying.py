@@ -8,8 +8,8 @@ from __future__ import annotations
 
 from collections import defaultdict
 from collections.abc import Iterable, Mapping, Sequence
-from dataclasses import dataclass, replace
-from typing import Literal
+from dataclasses import replace
+from typing import Literal, NamedTuple
 
 from ifccheck.beam import Beam, Contact, Model, OutOfScope, SupportKind
 from ifccheck.frame.contacts import contacts_of_others, find_contacts, is_seat
@@ -34,8 +34,7 @@ DIRECT_CLASSES = ("IfcColumn", "IfcWall", "IfcFooting", "IfcPile", "IfcBearing")
 """What presses back over the depth of an end that meets its face."""
 
 
-@dataclass(frozen=True, slots=True)
-class _Seat:
+class _Seat(NamedTuple):
     """A contact that may hold an end, and the beam that would carry it; None for the ground."""
 
     contact: Contact
@@ -75,7 +74,7 @@ def carried_contacts(
     everything = {**others, **contacts}
     judged = _judged(everything, _keys(everything, beams), _left_out(out_of_scope), beams)
     seats = {
-        key: [_Seat(*each) for each in own if is_seat(each[0]) and not each[0].doubt]
+        key: [each for each in own if not each.contact.doubt and is_seat(each.contact)]
         for key, own in judged.items()
     }
     carried = _carried(seats, stated)
@@ -106,11 +105,11 @@ def _judged(
     keys: Mapping[int, str],
     left_out: Mapping[int, str],
     beams: Sequence[Beam],
-) -> dict[str, list[tuple[Contact, str | None]]]:
+) -> dict[str, list[_Seat]]:
     """Every contact with the beam that would carry by it, and what speaks against it at once."""
     steps = {key: step for step, key in keys.items()}
     meeting = _ends_meeting(everything, steps)
-    judged: dict[str, list[tuple[Contact, str | None]]] = {}
+    judged: dict[str, list[_Seat]] = {}
     for key, own in everything.items():
         judged[key] = []
         for contact in own:
@@ -118,7 +117,7 @@ def _judged(
             carrier = None if reason in STANDING_USES else keys.get(contact.other_step)
             doubt = contact.doubt or _doubt(contact, steps[key], reason, meeting)
             contact = contact if doubt == contact.doubt else replace(contact, doubt=doubt)
-            judged[key].append((contact, carrier))
+            judged[key].append(_Seat(contact, carrier))
     return judged
 
 

@@ -12,6 +12,7 @@ from __future__ import annotations
 import math
 from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass
+from functools import lru_cache
 from typing import Literal
 
 import numpy as np
@@ -23,6 +24,7 @@ from ifccheck.frame.boxes import (
     Floats,
     Ints,
     beam_boxes,
+    holds,
     member_boxes,
     near_pairs,
     overlaps,
@@ -65,6 +67,7 @@ _STEEP = math.sqrt(0.5)
 
 _Place = Literal["start", "end", "between"]
 _Side = Literal["below", "above", "side", "end"]
+_SIDES: tuple[_Side, ...] = ("below", "above", "side", "end")
 
 
 @dataclass(frozen=True, slots=True)
@@ -75,6 +78,23 @@ class _Spanning:
     steps: Ints
     boxes: Boxes
     """x along the span, z up"""
+
+
+@dataclass(frozen=True, slots=True)
+class _Neighbours:
+    """Members that make contacts with what spans (M)."""
+
+    members: Sequence[Member]
+    told: Sequence[str]
+    """Name and class of each, for people"""
+    steps: Ints
+    boxes: Boxes
+    upright: Bools
+    """Of a kind that stands on the ground, not one that spans (M)"""
+    rests: Bools
+    """Of a kind that is no support (M)"""
+    proxy: Bools
+    """(M)"""
 
 
 @dataclass(frozen=True, slots=True)
@@ -165,18 +185,36 @@ def _along_spans(boxes: Boxes) -> Boxes:
 
 
 def _contacts_of(spanning: _Spanning, members: Sequence[Member]) -> dict[str, tuple[Contact, ...]]:
-    others = [member for member in members if _class_of(member) in (*TOUCHING, *RESTING)]
+    if not spanning.keys:
+        return {}
+    neighbours = _neighbours(members)
     found: dict[str, list[Contact]] = {key: [] for key in spanning.keys}
-    for touches in _find_touches(spanning, others):
-        for contact in _contacts(spanning, others, touches):
+    for touches in _find_touches(spanning, neighbours):
+        for contact in _contacts(spanning, neighbours, touches):
             found[contact.beam].append(contact)
     return {key: tuple(sorted(contacts, key=_order)) for key, contacts in found.items()}
+
+
+def _neighbours(members: Sequence[Member]) -> _Neighbours:
+    makes_contacts = {*TOUCHING, *RESTING}
+    chosen = [member for member in members if _class_of(member) in makes_contacts]
+    kinds = [_class_of(member) for member in chosen]
+    return _Neighbours(
+        chosen,
+        [f"{member.name or member.guid} ({member.ifc_class})" for member in chosen],
+        np.array([member.step_id for member in chosen], np.int64),
+        member_boxes(chosen),
+        upright=np.array([kind in UPRIGHT for kind in kinds], np.bool_),
+        rests=np.array([kind in RESTING for kind in kinds], np.bool_),
+        proxy=np.array([kind == PROXY for kind in kinds], np.bool_),
+    )
 
 
 def _class_of(member: Member) -> str:
     return kind_of(member.ifc_class)
 
 
+@lru_cache(maxsize=1024)
 def kind_of(ifc_class: str) -> str:
     """The class without the suffix of its restricted kinds."""
     return ifc_class.removesuffix("StandardCase").removesuffix("ElementedCase")
@@ -186,41 +224,34 @@ def _order(contact: Contact) -> tuple[float, float, str, str]:
     return contact.start, contact.end, contact.other, contact.place
 
 
-def _find_touches(spanning: _Spanning, members: Sequence[Member]) -> tuple[_Touches, _Touches]:
+def _find_touches(spanning: _Spanning, neighbours: _Neighbours) -> tuple[_Touches, _Touches]:
     """Pairs that touch, and those that only come near."""
-    others = member_boxes(members)
-    steps = np.array([member.step_id for member in members], np.int64)
-    beam, other = near_pairs(spanning.boxes.grown(NEAR), others)
-    foreign = spanning.steps[beam] != steps[other]
+    beam, other = near_pairs(spanning.boxes.grown(NEAR), neighbours.boxes)
+    foreign = spanning.steps[beam] != neighbours.steps[other]
     beam, other = beam[foreign], other[foreign]
-    touching, rest = _touches(spanning.boxes, others, members, (beam, other), TOLERANCE)
-    near, _ = _touches(spanning.boxes, others, members, rest, NEAR)
+    touching, rest = _touches(spanning.boxes, neighbours, (beam, other), TOLERANCE)
+    near, _ = _touches(spanning.boxes, neighbours, rest, NEAR)
     return touching, near
 
 
 def _touches(
-    own: Boxes,
-    others: Boxes,
-    members: Sequence[Member],
-    pairs: tuple[Ints, Ints],
-    tolerance: float,
+    own: Boxes, neighbours: _Neighbours, pairs: tuple[Ints, Ints], tolerance: float
 ) -> tuple[_Touches, tuple[Ints, Ints]]:
     """Those of the pairs that touch, and the other pairs."""
     grown = own.grown(tolerance)
-    covered = overlaps(grown.take(pairs[0]), others.take(pairs[1]))
-    within_plan(covered, grown, members, pairs)
+    covered = overlaps(grown.take(pairs[0]), neighbours.boxes.take(pairs[1]))
+    within_plan(covered, grown, neighbours.members, pairs)
     apart = np.isnan(covered[:, 0, 0])
     beam, other = pairs[0][~apart], pairs[1][~apart]
-    upright = np.array([_class_of(member) in UPRIGHT for member in members], np.bool_)
-    inner = others.take(other)
+    outer, inner = own.take(beam), neighbours.boxes.take(other)
     touching = _Touches(
         beam,
         other,
         covered[~apart],
-        own.half[beam],
-        _within(own.grown(TOLERANCE).take(beam), inner),
-        upright[other],
-        _reach(own.take(beam), inner),
+        outer.half,
+        holds(outer.grown(TOLERANCE), inner),
+        neighbours.upright[other],
+        _reach(outer, inner),
         tolerance,
     )
     return touching, (pairs[0][apart], pairs[1][apart])
@@ -234,39 +265,39 @@ def _reach(own: Boxes, others: Boxes) -> Floats:
     return np.stack([middle - half, middle + half], axis=-1)
 
 
-def _within(outer: Boxes, inner: Boxes) -> Bools:
-    """Whether each inner box lies wholly in its outer one."""
-    offset = inner.corners() - outer.centre[:, None, :]
-    places = np.abs(np.einsum("pkd,psd->psk", outer.axes, offset))
-    return np.asarray((places <= outer.half[:, None, :]).all(axis=(1, 2)))
-
-
-def _contacts(
-    spanning: _Spanning, members: Sequence[Member], touches: _Touches
-) -> Iterator[Contact]:
-    below, above, beside = _sides(touches)
+def _contacts(spanning: _Spanning, neighbours: _Neighbours, touches: _Touches) -> Iterator[Contact]:
     half_length = touches.half[:, 0]
     length = 2.0 * half_length
     start = np.clip(touches.covered[:, 0, 0] + half_length, 0.0, length)
     end = np.clip(touches.covered[:, 0, 1] + half_length, 0.0, length)
-    beyond = {"start": -half_length - touches.reach[:, 0], "end": touches.reach[:, 1] - half_length}
+    beyond: dict[_Place, Floats] = {
+        "start": -half_length - touches.reach[:, 0],
+        "end": touches.reach[:, 1] - half_length,
+        "between": np.zeros_like(length),
+    }
+    below, above, beside = _sides(touches)
+    side = np.select([below, above, beside], [0, 1, 2], 3)
+    hidden = touches.within & neighbours.proxy[touches.other]
+    bears = ~neighbours.rests[touches.other] & (touches.tolerance <= TOLERANCE)
     for place, there in _places(touches, above | beside).items():
-        for row in np.flatnonzero(there).tolist():
-            member = members[touches.other[row]]
-            kind = _class_of(member)
-            if kind == PROXY and touches.within[row]:
-                continue
+        rows = np.flatnonzero(there & ~hidden)
+        sides = np.minimum(side, 2) if place == "between" else side
+        columns = (touches.beam, touches.other, start, end, sides, beyond[place], bears)
+        for own, other, low, high, which, past, may_hold in zip(
+            *(column[rows].tolist() for column in columns), strict=True
+        ):
+            member = neighbours.members[other]
             yield Contact(
-                beam=spanning.keys[touches.beam[row]],
-                other=f"{member.name or member.guid} ({member.ifc_class})",
+                beam=spanning.keys[own],
+                other=neighbours.told[other],
                 other_class=member.ifc_class,
-                start=float(start[row]),
-                end=float(end[row]),
+                start=low,
+                end=high,
                 place=place,
-                side=_side(place, bool(below[row]), bool(above[row]), bool(beside[row])),
+                side=_SIDES[which],
                 other_step=member.step_id,
-                beyond=max(0.0, float(beyond[place][row])) if place != "between" else 0.0,
-                bears=touches.tolerance <= TOLERANCE and kind not in RESTING,
+                beyond=max(0.0, past),
+                bears=may_hold,
                 doubt=member.doubt,
             )
 
@@ -287,14 +318,6 @@ def _sides(touches: _Touches) -> tuple[Bools, Bools, Bools]:
     planted = in_plan & touches.upright & ~reaches_under
     above = ~below & (planted | (z[:, 0] >= half_depth - tolerance))
     return below, above, (lateral | under) & ~below & ~above
-
-
-def _side(place: _Place, below: bool, above: bool, beside: bool) -> _Side:
-    if below:
-        return "below"
-    if above:
-        return "above"
-    return "side" if beside or place == "between" else "end"
 
 
 def _places(touches: _Touches, cannot_hold_long: Bools) -> dict[_Place, Bools]:

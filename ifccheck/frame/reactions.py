@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Mapping, Sequence
+from collections.abc import Iterable, Mapping, Sequence, Set
 
 from ifccheck.beam import Beam, Contact, Reason, Unmeasured
 from ifccheck.frame.contacts import FRAMING, RESTING, TOLERANCE, UPRIGHT, is_seat, kind_of
@@ -58,40 +58,69 @@ def between_reactions(
     bearings
         How far the bearings that the brief states reach in from either end [mm].
     """
-    held = _held_stretches(contacts, length, bearings)
     tips = {"start"} if free_start else set()
     tips |= {"end"} if free_end else set()
-    return tuple(c for c in contacts if _may_rest(c) and _loads_span(c, tips, held, length))
+    return _resting(contacts, contacts, length, bearings, tips)
+
+
+def _resting(
+    sought: Iterable[Contact],
+    contacts: Sequence[Contact],
+    length: float,
+    bearings: tuple[float, float],
+    tips: Set[str],
+) -> tuple[Contact, ...]:
+    """Those sought that may bring a reaction, among all contacts of a beam."""
+    doubtful = [c for c in sought if not _only_holds(c, tips) and _may_rest(c)]
+    if not doubtful:
+        return ()
+    held = _held_stretches(contacts, length, bearings)
+    return tuple(c for c in doubtful if _loads_span(c, tips, held, length))
+
+
+def _only_holds(contact: Contact, tips: Set[str]) -> bool:
+    """Whether it is at an end that is held, under the beam or against its face."""
+    return (
+        contact.side in ("below", "end")
+        and contact.place != "between"
+        and contact.place not in tips
+    )
 
 
 def loaded_from_side(
     contacts: Sequence[Contact], length: float, bearings: tuple[float, float]
 ) -> bool:
     """Whether anything meets the side of a beam where it is not held."""
-    between = (contact for contact in contacts if contact.place == "between")
-    resting = between_reactions(contacts, length, bearings)
-    return any(contact.side == "side" for contact in (*between, *resting))
+    beside = [contact for contact in contacts if contact.side == "side"]
+    if not beside:
+        return False
+    if any(contact.place == "between" for contact in beside):
+        return True
+    return bool(_resting(beside, contacts, length, bearings, set()))
+
+
+_MAY_REST = {*FRAMING, *RESTING}
 
 
 def _may_rest(contact: Contact) -> bool:
     kind = kind_of(contact.other_class)
-    return kind in FRAMING or kind in RESTING or (kind == "IfcWall" and contact.side == "above")
+    return kind in _MAY_REST or (kind == "IfcWall" and contact.side == "above")
 
 
-def _loads_span(contact: Contact, tips: set[str], held: Mapping[str, float], length: float) -> bool:
+def _loads_span(contact: Contact, tips: Set[str], held: Mapping[str, float], length: float) -> bool:
     if contact.place in tips:
         return True
     if contact.place == "between":
         return contact.side != "below" or kind_of(contact.other_class) not in UPRIGHT
     reach = contact.end if contact.place == "start" else length - contact.start
-    return contact.side in ("above", "side") and reach > held[contact.place] + TOLERANCE
+    return reach > held[contact.place] + TOLERANCE
 
 
 def _held_stretches(
     contacts: Sequence[Contact], length: float, bearings: tuple[float, float]
 ) -> dict[str, float]:
     """How far in from either end the beam lies on what holds it [mm]."""
-    held = dict(zip(("start", "end"), bearings, strict=True))
+    held = {"start": bearings[0], "end": bearings[1]}
     for contact in contacts:
         if contact.place != "between" and is_seat(contact) and not contact.doubt:
             reach = contact.end if contact.place == "start" else length - contact.start
@@ -101,9 +130,9 @@ def _held_stretches(
 
 def reactions_reason(contacts: Sequence[Contact]) -> Reason | None:
     """Why a beam with such contacts is not rated; None without any."""
-    others = sorted({_told(contact) for contact in contacts})
-    if not others:
+    if not contacts:
         return None
+    others = sorted({_told(contact) for contact in contacts})
     named = ", ".join(others[:_NAMED])
     rest = f" and {len(others) - _NAMED} more" if len(others) > _NAMED else ""
     return Reason(f"reactions not included: {named}{rest}", blocking=False)

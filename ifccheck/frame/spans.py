@@ -4,9 +4,11 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 from dataclasses import dataclass
+from operator import attrgetter
 from typing import Literal
 
 from ifccheck.beam import Beam, Contact, Given, Line, Reason, Remark, Span, Support
+from ifccheck.frame.boxes import section_extent
 from ifccheck.frame.carrying import END_TO_END
 from ifccheck.frame.contacts import RESTING, TOLERANCE, is_seat
 from ifccheck.units import show
@@ -77,10 +79,12 @@ def stand_alone(
     stated
         The span that the brief states [mm].
     """
-    seats = tuple(
-        _seating(beam, end, support, contacts) for end, support in zip(_ENDS, supports, strict=True)
+    length, half_depth = beam.length, _depth(beam) / 2.0
+    seats = (
+        _seating(length, half_depth, "start", supports[0], contacts),
+        _seating(length, half_depth, "end", supports[1], contacts),
     )
-    start, end = _between(beam.length, supports, seats)
+    start, end = _between(length, supports, seats)
     source = f"from {seats[0].told} to {seats[1].told}"
     cantilever = "free" in (supports[0].kind, supports[1].kind)
     if cantilever:
@@ -90,26 +94,25 @@ def stand_alone(
         source = stated.source
     return Standing(
         line=Line(beams=(beam.key,), spans=(Span(start, end, *supports),)),
-        faces=(seats[0].face, beam.length - seats[1].face),
+        faces=(seats[0].face, length - seats[1].face),
         bearings=(seats[0].face, seats[1].face),
         source=source,
-        reasons=() if stated is None else _too_short(beam.length, seats, stated),
+        reasons=() if stated is None else _too_short(length, seats, stated),
         remarks=() if stated is not None or cantilever else _remarks(beam.key, seats, source),
     )
 
 
-_ENDS: tuple[End, End] = ("start", "end")
-
-
-def _seating(beam: Beam, end: End, support: Support, contacts: Sequence[Contact]) -> _Seating:
+def _seating(
+    length: float, half_depth: float, end: End, support: Support, contacts: Sequence[Contact]
+) -> _Seating:
     if support.kind == "free":
         return _Seating(0.0, 0.0, 0.0, f"its free {end}")
     seats = _seats(end, contacts)
     if not seats:
-        unknown = UNKNOWN_BEARING * beam.length
+        unknown = UNKNOWN_BEARING * length
         return _Seating(0.0, support.bearing, support.bearing or unknown, f"its {end}")
     facing = [contact for contact in seats if contact.side == "end"]
-    return _seated(beam, end, support, facing or seats)
+    return _seated(length, half_depth, end, support, facing or seats)
 
 
 def _seats(end: End, contacts: Sequence[Contact]) -> list[Contact]:
@@ -125,18 +128,22 @@ def _seats(end: End, contacts: Sequence[Contact]) -> list[Contact]:
     ]
 
 
+_how_far_beyond = attrgetter("beyond")
+
+
 def _inside(contact: Contact, length: float) -> float:
     return contact.end if contact.place == "start" else length - contact.start
 
 
-def _seated(beam: Beam, end: End, support: Support, seats: Sequence[Contact]) -> _Seating:
+def _seated(
+    length: float, half_depth: float, end: End, support: Support, seats: Sequence[Contact]
+) -> _Seating:
     """An end that lies on a member, meets its face, or is drawn some way into it.
 
     The centre lies half the bearing beyond the face of the support, wherever in it the end is.
     """
-    inside = max(_inside(contact, beam.length) for contact in seats)
-    widest = max(seats, key=lambda contact: contact.beyond)
-    half_depth = _depth(beam) / 2.0
+    inside = max([_inside(contact, length) for contact in seats])
+    widest = max(seats, key=_how_far_beyond)
     half = (support.bearing or inside + widest.beyond) / 2.0
     within = min(support.bearing, inside)
     beyond = round(max(min(half, half_depth) - inside, -within / 2.0), 6)
@@ -151,10 +158,10 @@ def _seated(beam: Beam, end: End, support: Support, seats: Sequence[Contact]) ->
 
 
 def _depth(beam: Beam) -> float:
-    outlines = [run.outline for run in beam.runs]
-    outlines += [run.outline_end for run in beam.runs if run.outline_end is not None]
-    heights = [z for outline in outlines for ring in outline.rings for _, z in ring]
-    return max(heights, default=0.0) - min(heights, default=0.0)
+    if not beam.runs:
+        return 0.0
+    *_, low, high = section_extent(beam)
+    return high - low
 
 
 def _between(
