@@ -138,20 +138,23 @@ _BY_BEAM = {
     " on, or from its ends: each sheet says which",
 }
 """Assumptions that differ only by the members that they name, by how they begin."""
+_NAMING = tuple(_BY_BEAM)
 
 
 def _assumptions(ratings: Iterable[Rating]) -> tuple[Assumption, ...]:
     """Every assumption once, with the beams that it was made for."""
-    beams: dict[str, list[str]] = {}
+    beams: dict[str, dict[str, None]] = {}
     for rating in ratings:
         for remark in rating.remarks:
             if remark.kind == "assumption":
-                beams.setdefault(_assumed(remark.text), []).append(rating.beam)
-    return tuple(Assumption(text, tuple(dict.fromkeys(keys))) for text, keys in beams.items())
+                beams.setdefault(_assumed(remark.text), {})[rating.beam] = None
+    return tuple(Assumption(text, tuple(keys)) for text, keys in beams.items())
 
 
 def _assumed(text: str) -> str:
-    return next((words for start, words in _BY_BEAM.items() if text.startswith(start)), text)
+    if not text.startswith(_NAMING):
+        return text
+    return next(words for start, words in _BY_BEAM.items() if text.startswith(start))
 
 
 def files_of(

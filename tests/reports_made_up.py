@@ -493,5 +493,5 @@ def _spoilt(rating: Rating) -> Rating:
         rating,
         reasons=tuple(replace(reason, text=HOSTILE[1]) for reason in rating.reasons),
         remarks=tuple(Remark(rating.beam, "read", text, "doubt") for text in HOSTILE),
-        basis=tuple(replace(item, source=HOSTILE[2]) for item in rating.basis),
+        basis=tuple(item._replace(source=HOSTILE[2]) for item in rating.basis),
     )

@@ -237,8 +237,8 @@ def test_a_case_that_never_governs_has_no_factor() -> None:
 
 def test_one_case_that_is_not_rated_leaves_no_least_factor() -> None:
     rating = first(Verdict.FALLS_SHORT)
-    doubtful = replace(
-        rating.safe_loads[1], factor=math.nan, single_value=math.nan, text="not rated"
+    doubtful = rating.safe_loads[1]._replace(
+        factor=math.nan, single_value=math.nan, text="not rated"
     )
     changed = replace(rating, safe_loads=(rating.safe_loads[0], doubtful))
     found = sets_of(with_rating(changed), REPORT.beam(rating.beam))

@@ -3,13 +3,13 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Sequence
+from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
 
 import numpy as np
 
 from ifccheck.beam import Case, Face, Reason, Remark, Verdict
-from ifccheck.mechanics.arrays import Bools, Floats
+from ifccheck.mechanics.arrays import Bools
 from ifccheck.rating import verdict
 from ifccheck.rating.basis import bases_of
 from ifccheck.rating.batch import Batch, Envelope
@@ -28,14 +28,32 @@ class _Findings:
     governing: LimitStateRating | None
     notes: list[Remark]
     basis: tuple[BasisItem, ...]
+    reasons: tuple[Reason, ...]
+    """Why it may not be called adequate"""
+    safe_loads: tuple[SafeLoad, ...]
 
 
 def ratings_of(batch: Batch, standard: Standard, cases: Sequence[Case]) -> list[Rating]:
     """The answer for every beam of a batch, in its order."""
     states = _limit_states(batch)
     governing = [verdict.governing_of(each) for each in states]
-    found = map(_Findings, states, governing, _notes(batch), bases_of(batch, governing))
-    return [_rating(batch, row, each, standard, cases) for row, each in enumerate(found)]
+    reasons = [
+        (*subject.reasons, *verdict.incomplete_reasons(each))
+        for subject, each in zip(batch.subjects, states, strict=True)
+    ]
+    found = map(
+        _Findings,
+        states,
+        governing,
+        _notes(batch),
+        bases_of(batch, governing),
+        reasons,
+        _safe_loads(batch, standard, cases, [not each for each in reasons]),
+    )
+    covered = covered_by([s.state for s in batch.states]), standard.not_checked
+    return [
+        _rating(subject, each, covered) for subject, each in zip(batch.subjects, found, strict=True)
+    ]
 
 
 def unrated(beam: Unrated, standard: Standard) -> Rating:
@@ -61,33 +79,34 @@ def covered_by(states: Sequence[LimitState]) -> tuple[str, ...]:
 
 
 def _rating(
-    batch: Batch, row: int, found: _Findings, standard: Standard, cases: Sequence[Case]
+    subject: Subject, found: _Findings, covered: tuple[tuple[str, ...], tuple[str, ...]]
 ) -> Rating:
-    subject = batch.subjects[row]
-    reasons = (*subject.reasons, *verdict.incomplete_reasons(found.states))
-    word = verdict.verdict_of(found.states, reasons)
+    word = verdict.verdict_of(found.states, found.reasons)
     return Rating(
         beam=subject.beam.key,
         verdict=word,
         utilisation=_utilisation(word, found.governing),
         governing=None if word is Verdict.NOT_RATED else found.governing,
         limit_states=found.states,
-        safe_loads=_safe_loads(batch, row, standard, cases, complete=not reasons),
-        reasons=reasons if word is Verdict.NOT_RATED else (),
-        remarks=(*subject.remarks, *_unsettled(subject, word, reasons), *found.notes),
+        safe_loads=found.safe_loads,
+        reasons=found.reasons if word is Verdict.NOT_RATED else (),
+        remarks=(*subject.remarks, *_unsettled(subject, word, found.reasons), *found.notes),
         basis=found.basis,
-        checked=covered_by([s.state for s in batch.states]),
-        not_checked=standard.not_checked,
+        checked=covered[0],
+        not_checked=covered[1],
     )
 
 
 def _limit_states(batch: Batch) -> list[tuple[LimitStateRating, ...]]:
     """What every limit state says of each beam."""
-    missing = [_missing(subject) for subject in batch.subjects]
+
+    def missing(row: int) -> str:
+        return _missing(batch.subjects[row])
+
     columns = [verdict.limit_state_ratings(each, batch.places, missing) for each in batch.states]
     return [
-        verdict.with_unknown_steel([column[row] for column in columns], _silent_faces(batch, row))
-        for row in range(len(batch.subjects))
+        verdict.with_unknown_steel(states, _silent_faces(batch, row))
+        for row, states in enumerate(zip(*columns, strict=True))
     ]
 
 
@@ -106,6 +125,8 @@ def _missing(subject: Subject) -> str:
 
 def _silent_faces(batch: Batch, row: int) -> tuple[Face, ...]:
     """Faces in tension of whose bars no source speaks."""
+    if not batch.subjects[row].silent:
+        return ()
     stations = slice(batch.first[row], batch.first[row + 1])
     return tuple(
         face
@@ -135,35 +156,41 @@ def _unsettled(subject: Subject, word: Verdict, reasons: Sequence[Reason]) -> li
 
 
 def _safe_loads(
-    batch: Batch, row: int, standard: Standard, cases: Sequence[Case], *, complete: bool
-) -> tuple[SafeLoad, ...]:
-    found = []
+    batch: Batch, standard: Standard, cases: Sequence[Case], complete: Sequence[bool]
+) -> list[tuple[SafeLoad, ...]]:
+    """What each rated case may grow to on every beam that it loads."""
+    columns = []
     for case in (each.name for each in cases if each.rated):
-        loads = [load for load in batch.subjects[row].loads if load.case == case]
-        if loads:
-            factors, states = batch.factors[case], standard.limit_states
-            found.append(
-                verdict.safe_load(case, loads, factors, row, states, batch.places, complete)
-            )
-    return tuple(found)
+        loads = [[load for load in s.loads if load.case == case] for s in batch.subjects]
+        factors, states = batch.factors[case], standard.limit_states
+        columns.append(verdict.safe_loads(case, loads, factors, states, batch.places, complete))
+    found = zip(*columns, strict=True) if columns else ((),) * len(batch.subjects)
+    return [tuple(safe for safe in own if safe is not None) for own in found]
 
 
 def _notes(batch: Batch) -> list[list[Remark]]:
     """On each beam: supports that are lifted, and what the standard remarks of a stretch."""
-    remarks = [
-        uplift_remarks(batch.uplift, row, subject.beam.key, batch.places)
-        for row, subject in enumerate(batch.subjects)
-    ]
-    x, beam = batch.stations.x, batch.stations.beam
+    keys = [subject.beam.key for subject in batch.subjects]
+    remarks: list[list[Remark]] = [[] for _ in keys]
+    for row, remark in uplift_remarks(batch.uplift, keys, batch.places):
+        remarks[row].append(remark)
     for note in batch.notes:
         mask = note.mask & _in_tension(batch.envelope, note.face) if note.face else note.mask
-        for row in np.unique(beam[mask]).tolist():
-            stations = slice(batch.first[row], batch.first[row + 1])
-            text = f"{note.text} ({note.clause}), {_stretch(x[stations][mask[stations]])}"
-            remarks[row].append(Remark(batch.subjects[row].beam.key, "rating", text))
+        for row, stretch in _stretches(batch, mask):
+            text = f"{note.text} ({note.clause}), {stretch}"
+            remarks[row].append(Remark(keys[row], "rating", text))
     return remarks
 
 
-def _stretch(places: Floats) -> str:
-    low, high = show(float(places.min()), "length"), show(float(places.max()), "length")
+def _stretches(batch: Batch, mask: Bools) -> Iterator[tuple[int, str]]:
+    """From where to where stations of the mask stand, of each beam that has some."""
+    x, first = batch.stations.x, batch.first[:-1]
+    low = np.minimum.reduceat(np.where(mask, x, math.inf), first)
+    high = np.maximum.reduceat(np.where(mask, x, -math.inf), first)
+    for row in np.flatnonzero(low <= high).tolist():
+        yield row, _stretch(float(low[row]), float(high[row]))
+
+
+def _stretch(start: float, end: float) -> str:
+    low, high = show(start, "length"), show(end, "length")
     return f"at x = {low}" if low == high else f"between x = {low} and {high}"

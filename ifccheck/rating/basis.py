@@ -8,9 +8,10 @@ from functools import cache, lru_cache
 
 import numpy as np
 
-from ifccheck.beam import Bars, Given, Stirrups, Support
+from ifccheck.beam import Bars, Given, Outline, Stirrups, Support
 from ifccheck.mechanics.arrays import Ints
 from ifccheck.rating.batch import Batch
+from ifccheck.rating.elements import first_greatest
 from ifccheck.rating.results import BasisItem, LimitStateRating
 from ifccheck.rating.subject import Subject
 from ifccheck.result_sets import Measure
@@ -23,35 +24,47 @@ def bases_of(
     """Strengths, depths, areas, stirrups, span and supports of every beam of a batch."""
     sections = _sections(batch, governing)
     return [
-        (*_strengths(subject), *_standing(subject), *_steel(subject), *at_section)
+        (*_materials(subject), *_standing(subject), *_steel(subject), *at_section)
         for subject, at_section in zip(batch.subjects, sections, strict=True)
     ]
 
 
-def _strengths(subject: Subject) -> list[BasisItem]:
+def _materials(subject: Subject) -> tuple[BasisItem, ...]:
+    return _strengths(
+        subject.concrete_strength,
+        subject.aggregate_size,
+        subject.unit_weight,
+        subject.density_factor,
+        subject.bar_yield,
+        subject.stirrup_yield,
+    )
+
+
+@lru_cache(maxsize=4096)
+def _strengths(
+    strength: Given,
+    aggregate: Given,
+    unit_weight: Given,
+    density_factor: Given,
+    bar_yield: tuple[Given, ...],
+    stirrup_yield: tuple[Given, ...],
+) -> tuple[BasisItem, ...]:
+    weight = show(unit_weight.value, "unit_weight")
     items = [
-        _given("ConcreteStrength", "concrete strength", subject.concrete_strength, "pressure"),
-        _given("AggregateSize", "largest aggregate", subject.aggregate_size, "length"),
+        _given("ConcreteStrength", "concrete strength", strength, "pressure"),
+        _given("AggregateSize", "largest aggregate", aggregate, "length"),
         BasisItem(
-            "ConcreteUnitWeight",
-            "unit weight of the concrete",
-            show(subject.unit_weight.value, "unit_weight"),
-            "text",
-            subject.unit_weight.source,
+            "ConcreteUnitWeight", "unit weight of the concrete", weight, "text", unit_weight.source
         ),
     ]
-    if subject.density_factor.value != 1.0:
-        items.append(
-            _given(
-                "DensityFactor", "factor for low-density concrete", subject.density_factor, "real"
-            )
-        )
-    items += _yields("BarYield", "yield strength of the bars", subject.bar_yield)
-    items += _yields("StirrupYield", "yield strength of the stirrups", subject.stirrup_yield)
-    return items
+    if density_factor.value != 1.0:
+        label = "factor for low-density concrete"
+        items.append(_given("DensityFactor", label, density_factor, "real"))
+    items += _yields("BarYield", "yield strength of the bars", bar_yield)
+    items += _yields("StirrupYield", "yield strength of the stirrups", stirrup_yield)
+    return tuple(items)
 
 
-@lru_cache(maxsize=1024)
 def _given(name: str, label: str, given: Given, measure: Measure) -> BasisItem:
     return BasisItem(name, label, given.value, measure, given.source, given.assumed)
 
@@ -101,7 +114,12 @@ def _steel(subject: Subject) -> list[BasisItem]:
 
 
 def _depth(subject: Subject) -> float:
-    return max(z for _, z in subject.beam.runs[0].outline.rings[0])
+    return _height(subject.beam.runs[0].outline)
+
+
+@lru_cache(maxsize=4096)
+def _height(outline: Outline) -> float:
+    return max(z for _, z in outline.rings[0])
 
 
 def _bars_text(bars: Sequence[Bars]) -> str:
@@ -133,21 +151,25 @@ def _sections(batch: Batch, governing: Sequence[LimitStateRating | None]) -> lis
     items: list[list[BasisItem]] = [[] for _ in places]
     for name, values in batch.basis.items():
         label, measure = _words(name), _measure(name)
-        for own, place, value in zip(items, places, values[stations].tolist(), strict=True):
+        known: dict[tuple[float, str], BasisItem] = {}
+        for own, value, place in zip(items, values[stations].tolist(), places, strict=True):
             if math.isfinite(value):
-                own.append(BasisItem(name, label, value, measure, place))
+                item = known.get((value, place))
+                if item is None:
+                    item = BasisItem(name, label, value, measure, place)
+                    known[value, place] = item
+                own.append(item)
     return items
 
 
 def _basis_stations(batch: Batch, governing: Sequence[LimitStateRating | None]) -> Ints:
     """Station of each beam that is nearest to the place of its basis (B)."""
-    x, found = batch.stations.x, []
-    for row, state in enumerate(governing):
-        first, last = batch.first[row], batch.first[row + 1]
-        place = state.position if state else math.nan
-        target = place if math.isfinite(place) else (x[first] + x[last - 1]) / 2.0
-        found.append(first + np.abs(x[first:last] - target).argmin())
-    return np.array(found, np.intp)
+    x, first = batch.stations.x, batch.first[:-1]
+    middle = (x[first] + x[batch.first[1:] - 1]) / 2.0
+    place = np.array([math.nan if state is None else state.position for state in governing])
+    target = np.where(np.isfinite(place), place, middle)
+    distance = np.abs(x - np.repeat(target, np.diff(batch.first)))
+    return first_greatest(-distance, first)[1]
 
 
 @cache

@@ -1,14 +1,18 @@
-"""What a rating says, for people, viewers and tables."""
+"""What a rating says, for people, viewers and tables.
+
+Its parts are named tuples, as there are tens of thousands of them, made and looked up by all
+that they hold.
+"""
 
 from __future__ import annotations
 
 from dataclasses import dataclass
+from typing import NamedTuple
 
 from ifccheck.beam import Reason, Remark, Verdict
 
 
-@dataclass(frozen=True, slots=True)
-class LimitStateRating:
+class LimitStateRating(NamedTuple):
     """The greatest utilisation of one limit state on one beam and where it stands."""
 
     name: str
@@ -28,8 +32,7 @@ class LimitStateRating:
     """Where utilisation is nan: "outside 10.5.2: ..." or the missing input"""
 
 
-@dataclass(frozen=True, slots=True)
-class SafeLoad:
+class SafeLoad(NamedTuple):
     """What a rated case may grow to on one beam."""
 
     case: str
@@ -49,8 +52,7 @@ class SafeLoad:
     combination: str
 
 
-@dataclass(frozen=True, slots=True)
-class BasisItem:
+class BasisItem(NamedTuple):
     """One thing that a rating rests on, with its source."""
 
     name: str

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
 
 import numpy as np
@@ -51,15 +52,14 @@ def uplift_of(effects: Effects, spans: SpanTable) -> Uplift:
     return Uplift(np.where(pinned, net.max(axis=0), 0.0), net.argmax(axis=0))
 
 
-def uplift_remarks(uplift: Uplift, beam: int, key: str, places: Places) -> list[Remark]:
-    """What to tell of the supports of one beam that are lifted."""
-    found = []
-    for end, name in enumerate(ENDS):
+def uplift_remarks(
+    uplift: Uplift, keys: Sequence[str], places: Places
+) -> Iterator[tuple[int, Remark]]:
+    """What to tell of each support that is lifted, with the row of its beam; keys of all (B)."""
+    for beam, end in np.argwhere(uplift.force > 0.0).tolist():
         force, row = float(uplift.force[beam, end]), int(uplift.combination[beam, end])
-        if force > 0.0:
-            text = (
-                f"its {name} is lifted by up to {show(force, 'force')} under"
-                f" {places.combination_of(row, beam)}: what holds it down is not checked"
-            )
-            found.append(Remark(key, "demand", text, "doubt"))
-    return found
+        text = (
+            f"its {ENDS[end]} is lifted by up to {show(force, 'force')} under"
+            f" {places.combination_of(row, beam)}: what holds it down is not checked"
+        )
+        yield beam, Remark(keys[beam], "demand", text, "doubt")

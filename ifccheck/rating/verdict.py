@@ -3,18 +3,21 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Sequence
-from dataclasses import dataclass, replace
-from functools import lru_cache
+from collections.abc import Callable, Sequence
+from dataclasses import dataclass
+from operator import attrgetter
+
+import numpy as np
 
 from ifccheck.beam import Combination, Face, Load, Nature, Reason, Verdict
-from ifccheck.mechanics.arrays import Floats
+from ifccheck.mechanics.arrays import Floats, Ints
 from ifccheck.rating.factors import Factors
 from ifccheck.rating.results import LimitStateRating, SafeLoad
 from ifccheck.rating.utilisation import Worst
 from ifccheck.standards import Check, LimitState
 from ifccheck.units import show, show_ratio
 
+_used = attrgetter("utilisation")
 _UNKNOWN_CASE = "cannot be said: the beam is not rated"
 
 
@@ -40,26 +43,24 @@ class Places:
     natures: tuple[frozenset[Nature], ...]
     """Natures of the loads on each beam (B)"""
 
-    def combination(self, element: int, beam: int) -> str:
-        """Name of the combination of an element, without what does not act on its beam."""
-        return self.combination_of(element // self.x.size // self.arrangements, beam)
+    def combinations_at(self, elements: Ints) -> list[str]:
+        """Name of the combination of an element of each beam, without what does not act (B)."""
+        rows = (elements // self.x.size // self.arrangements).tolist()
+        places = list(zip(rows, self.natures, strict=True))
+        names = {place: self.combinations[place[0]].label(place[1]) for place in set(places)}
+        return [names[place] for place in places]
 
     def combination_of(self, row: int, beam: int) -> str:
         """Name of a combination by its row, without what does not act on a beam."""
-        return _label(self.combinations[row], self.natures[beam])
+        return self.combinations[row].label(self.natures[beam])
 
-    def position(self, element: int) -> float:
-        """x of an element [mm]."""
-        return float(self.x[element % self.x.size])
-
-
-@lru_cache(maxsize=4096)
-def _label(combination: Combination, natures: frozenset[Nature]) -> str:
-    return combination.label(natures)
+    def positions(self, elements: Ints) -> Floats:
+        """x of elements [mm]."""
+        return np.asarray(self.x[elements % self.x.size])
 
 
 def limit_state_ratings(
-    found: Evaluated, places: Places, missing: Sequence[str]
+    found: Evaluated, places: Places, missing: Callable[[int], str]
 ) -> list[LimitStateRating]:
     """What one limit state says of every beam of the batch, in its order.
 
@@ -67,12 +68,16 @@ def limit_state_ratings(
     outside no clause's range it comes from what is ``missing`` of that beam.
     """
     worst, state, check = found.worst, found.state, found.shown
+    incomplete = worst.incomplete & (worst.utilisation <= 1.0)
+    demanded = incomplete | (worst.utilisation > 0.0)
     rows = zip(
-        worst.utilisation.tolist(),
-        (worst.incomplete & (worst.utilisation <= 1.0)).tolist(),
-        worst.shown.tolist(),
-        check.demand.tolist(),
-        check.resistance.tolist(),
+        incomplete.tolist(),
+        np.where(incomplete, math.nan, worst.utilisation).tolist(),
+        np.where(demanded, places.positions(worst.shown), math.nan).tolist(),
+        places.combinations_at(worst.shown),
+        demanded.tolist(),
+        np.where(demanded, check.demand, 0.0).tolist(),
+        np.where(demanded, check.resistance, math.nan).tolist(),
         strict=True,
     )
     return [
@@ -80,19 +85,20 @@ def limit_state_ratings(
             name=state.name,
             title=state.title,
             covers=state.covers,
-            utilisation=math.nan if incomplete else utilisation,
-            position=places.position(element) if demanded else math.nan,
-            combination=places.combination(element, beam) if demanded else "",
-            demand=demand if demanded else 0.0,
-            resistance=resistance if demanded else math.nan,
+            utilisation=utilisation,
+            position=position,
+            combination=combination if is_demanded else "",
+            demand=demand,
+            resistance=resistance,
             demand_unit=state.demand_unit,
             clause=state.clause,
             counted=True,
-            why_not=(_outside(check, beam) or missing[beam]) if incomplete else "",
+            why_not=(_outside(check, beam) or missing(beam)) if lacks else "",
         )
-        for beam, (utilisation, incomplete, element, demand, resistance) in enumerate(rows)
-        for demanded in [incomplete or utilisation > 0.0]
-    ]
+        for beam, (
+            lacks, utilisation, position, combination, is_demanded, demand, resistance
+        ) in enumerate(rows)
+    ]  # fmt: skip
 
 
 def _outside(check: Check, beam: int) -> str | None:
@@ -110,7 +116,7 @@ def with_unknown_steel(
         return tuple(states)
     why = f"the bars of the {' and of the '.join(silent)} are not stated"
     return tuple(
-        replace(state, utilisation=math.nan, why_not=why)
+        state._replace(utilisation=math.nan, why_not=why)
         if math.isinf(state.utilisation)
         else state
         for state in states
@@ -120,7 +126,7 @@ def with_unknown_steel(
 def governing_of(states: Sequence[LimitStateRating]) -> LimitStateRating | None:
     """The counted limit state of greatest utilisation, of those that have one."""
     known = [s for s in states if s.counted and s.utilisation > 0.0]
-    return max(known, key=lambda s: s.utilisation, default=None)
+    return max(known, key=_used, default=None)
 
 
 def verdict_of(states: Sequence[LimitStateRating], reasons: Sequence[Reason]) -> Verdict:
@@ -143,32 +149,60 @@ def incomplete_reasons(states: Sequence[LimitStateRating]) -> tuple[Reason, ...]
     return tuple(Reason(text, blocking=False) for text in texts)
 
 
-def safe_load(
+def safe_loads(
     case: str,
-    loads: Sequence[Load],
+    loads: Sequence[Sequence[Load]],
     factors: Factors,
-    beam: int,
     states: Sequence[LimitState],
     places: Places,
-    complete: bool,
+    complete: Sequence[bool],
+) -> list[SafeLoad | None]:
+    """What a rated case may grow to on each beam (B); None where none of its ``loads`` acts.
+
+    ``complete`` is False where the beam is not rated.
+    """
+    columns = (factors.factor, factors.state, factors.x)
+    rows = zip(
+        loads,
+        complete,
+        *(column.tolist() for column in columns),
+        places.combinations_at(factors.element),
+        strict=True,
+    )
+    titles = [*(state.title for state in states), ""]  # the last where none limits it
+    return [
+        _safe_load(case, own, factor, titles[state], position, combination if state >= 0 else "")
+        if own and whole
+        else _unknown(case, own)
+        if own
+        else None
+        for own, whole, factor, state, position, combination in rows
+    ]
+
+
+def _assigned(loads: Sequence[Load]) -> str:
+    return "; ".join([load.text for load in loads])
+
+
+def _unknown(case: str, loads: Sequence[Load]) -> SafeLoad:
+    """Of a beam that is not rated."""
+    return SafeLoad(case, math.nan, _assigned(loads), math.nan, "", _UNKNOWN_CASE, "", math.nan, "")
+
+
+def _safe_load(
+    case: str, loads: Sequence[Load], factor: float, title: str, position: float, combination: str
 ) -> SafeLoad:
-    """What a rated case may grow to on one beam; ``complete`` is False where it is not rated."""
-    assigned = "; ".join(load.text for load in loads)
-    if not complete:
-        return SafeLoad(case, math.nan, assigned, math.nan, "", _UNKNOWN_CASE, "", math.nan, "")
-    factor, row = float(factors.factor[beam]), int(factors.state[beam])
-    element = int(factors.element[beam])
     kind, value = _single(loads)
     return SafeLoad(
         case=case,
         factor=factor,
-        assigned=assigned,
+        assigned=_assigned(loads),
         single_value=factor * value if math.isfinite(factor) else math.nan,
         single_kind=kind,
         text=_safe_load_text(factor, kind, value, loads),
-        governing=states[row].title if row >= 0 else "",
-        position=float(factors.x[beam]),
-        combination=places.combination(element, beam) if row >= 0 else "",
+        governing=title,
+        position=position,
+        combination=combination,
     )
 
 
