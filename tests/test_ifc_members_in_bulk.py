@@ -12,12 +12,19 @@ from pathlib import Path
 from typing import Any
 
 import ifcopenshell
+import numpy as np
 import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
 
+from ifccheck.ifc.bodies import body_items, extrusion
+from ifccheck.ifc.context import Context, make_context
 from ifccheck.ifc.lexer import scan
+from ifccheck.ifc.members import members_of
 from ifccheck.ifc.opening import open_model
+from ifccheck.ifc.plain_bodies import PlainBodies
+from ifccheck.ifc.products import Product, read_products
+from ifccheck.ifc.profiles import Profiles
 from ifccheck.ifc.reader import read_model
 from ifccheck.ifc.relations import read_relations
 from ifccheck.ifc.step_table import StepTable, make_step_table
@@ -27,9 +34,11 @@ from tests.test_ifc_reader import FILES
 
 SAMPLE = Path(__file__).resolve().parents[1] / "sample_models" / "print_works.ifc"
 NAMES = (
-    "B-1", "RC beam 300x500", "Stahlträger", "it's", "a, (b); c", "", " B 2 ", "W12x26", "\\x\\",
-    "Fundamentbalken", "LC30/33 beam", "Spannbetonbinder", "#7", "bearing pad",
+    "B-1", "RC beam 300x500", "a, (b); c", "", " B 2 ", "W12x26", "Fundamentbalken", "#7",
+    "LC30/33 beam", "Spannbetonbinder", "bearing pad", None,
 )  # fmt: skip
+ODD_NAMES = ("Stahlträger", "it's", "\\x\\", "ü")
+"""Names that are spelt with escapes in the file."""
 MATERIALS = ("Concrete C30/37", "C35/45", "Steel S355", "", "Baustahl", "GL24h", "X", "300 psi")
 GENERAL = "Pset_ConcreteElementGeneral"
 
@@ -51,9 +60,9 @@ def random_building(schema: str, unit: str, rng: random.Random) -> Building:
             _class(rng),
             *_items(building, profiles, rng),
             placement=_placement(building, parent, rng),
-            Name=rng.choice((*NAMES, None)),
-            ObjectType=rng.choice((*NAMES, None)),
-            Tag=rng.choice((*NAMES, None)),
+            Name=rng.choice(NAMES if rng.random() < 0.8 else ODD_NAMES),
+            ObjectType=rng.choice(NAMES),
+            Tag=rng.choice(NAMES if rng.random() < 0.9 else ODD_NAMES),
         )
         for _ in range(rng.randint(6, 14))
     ]
@@ -157,6 +166,53 @@ def test_models_in_bulk_are_those_read_one_by_one(
     opened, table = Opened(file, schema), table_of(text)
     assert read_model(opened, {}, table) == read_model(opened, {})
     assert read_relations(file, table) == read_relations(file)
+
+
+@pytest.mark.parametrize("style", STYLES)
+@given(seed=st.integers(0, 10**6))
+@settings(max_examples=12, deadline=None)
+def test_bodies_in_bulk_are_the_same_to_the_last_bit(style: str, seed: int) -> None:
+    rng = random.Random(seed)
+    text = as_written(random_building("IFC4", "INCH", rng).file.to_string(), rng, style)
+    file = ifcopenshell.file.from_string(text)
+    found, bodies, products = plain_bodies(file, table_of(text))
+    context = make_context(file, "IFC4")
+    profiles = Profiles(context.placements)
+    for product in products:
+        if product.step_id not in bodies:
+            continue
+        entity = file.by_id(product.step_id)
+        (placed,) = body_items(context, entity)
+        expected = extrusion(context, profiles, placed)
+        prism, placement = bodies.of(product.step_id)
+        assert np.array_equal(prism.matrix, expected.matrix)
+        assert prism.along == expected.along
+        assert all(map(np.array_equal, prism.profile.rings, expected.profile.rings))
+        assert np.array_equal(placement, context.placements.matrix(entity))
+        assert np.array_equal(placement, found.placements.matrix(entity))  # it has learnt it
+
+
+def plain_bodies(file: Any, table: StepTable) -> tuple[Context, PlainBodies, list[Product]]:
+    context = make_context(file, str(file.schema), table)
+    products = read_products(context, members_of(file))
+    return context, PlainBodies(context, Profiles(context.placements), products), products
+
+
+@pytest.mark.parametrize("style", ["as it is", "spaced", "wrapped", "numbers", "out of order"])
+def test_most_members_are_read_in_bulk(style: str) -> None:
+    """Else the tests above would compare the thorough reader with itself."""
+    rng = random.Random(1)
+    buildings = [random_building("IFC4", "METRE", rng) for _ in range(10)]
+    plain = told = members = 0
+    for building in buildings:
+        text = as_written(building.file.to_string(), rng, style)
+        file = ifcopenshell.file.from_string(text)
+        _, bodies, products = plain_bodies(file, table_of(text))
+        members += len(products)
+        told += sum(product.placement > 0 for product in products)
+        plain += sum(product.step_id in bodies for product in products)
+    assert told > members / 2
+    assert plain > members / 3
 
 
 @pytest.mark.parametrize("name", FILES)

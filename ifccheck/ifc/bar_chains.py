@@ -58,9 +58,12 @@ def _places(table: StepTable, placement: Ints) -> tuple[Bools, Ints, Floats]:
     return found, parent, move
 
 
-def read_points(table: StepTable, ids: Ints) -> tuple[Bools, Floats]:
-    """Read points in space by their STEP ids: which are, and their coordinates (N, 3)."""
-    point = table.cursors(ids, "IFCCARTESIANPOINT")
+def read_points(
+    table: StepTable, ids: Ints, word: str = "IFCCARTESIANPOINT"
+) -> tuple[Bools, Floats]:
+    """Read points in space, or what is written like them, by their STEP ids: which are, and their
+    coordinates (N, 3)."""
+    point = table.cursors(ids, word)
     point.tokens(b"(")
     x = point.number()
     point.tokens(b",")

@@ -9,18 +9,10 @@ from dataclasses import dataclass, field, replace
 from ifccheck.beam import Beam, Box, Given, OutOfScope, Reason, Remark, Run
 from ifccheck.ifc.bodies import body_items, read_prism
 from ifccheck.ifc.context import Context
-from ifccheck.ifc.entity import (
-    ILL_TYPED,
-    NAME,
-    OBJECT_TYPE,
-    TAG,
-    Entity,
-    UnreadableError,
-    get,
-    text,
-    text_at,
-)
+from ifccheck.ifc.entity import ILL_TYPED, Entity, UnreadableError, text
 from ifccheck.ifc.materials import MaterialDefinition, Materials
+from ifccheck.ifc.plain_bodies import PlainBodies
+from ifccheck.ifc.products import Product
 from ifccheck.ifc.profiles import Profiles
 from ifccheck.ifc.properties import PropertyValue, Sets
 from ifccheck.ifc.scope import Clues, judge
@@ -35,6 +27,7 @@ GEOMETRY, MATERIALS = "geometry", "materials"
 COVERS = ("ConcreteCoverAtLinks", "ConcreteCover")
 THICKEST_COVER = 200.0
 """Covers beyond this are misread units [mm]."""
+HOLLOW_CORE = "HOLLOWCORE"
 SPEAKS_OF_MATERIAL = re.compile(r"materi[ae]l|werkstoff|matériau|betong?güte", re.IGNORECASE)
 DENSITIES = (1000.0, 3500.0)
 """Densities that concrete has [kg/m3]."""
@@ -75,9 +68,17 @@ class _Doubts:
 class BeamReader:
     """Reads the beams of one model."""
 
-    def __init__(self, context: Context, profiles: Profiles, storeys: Storeys, model: str) -> None:
+    def __init__(
+        self,
+        context: Context,
+        profiles: Profiles,
+        storeys: Storeys,
+        model: str,
+        bodies: PlainBodies,
+    ) -> None:
         self._context = context
         self._profiles = profiles
+        self._bodies = bodies
         self._storeys = storeys
         self._model = model
         self._tendons = Tendons(context, profiles)
@@ -90,34 +91,33 @@ class BeamReader:
         """What is doubtful of the model, and not of a single beam."""
         return self._tendons.remarks
 
-    def read(self, entity: Entity, identity: Identity) -> Found:
+    def read(self, product: Product, identity: Identity) -> Found:
         """Return what the model says of a beam."""
-        step_id = entity.id()
+        step_id = product.step_id
         doubts = _Doubts(identity.key)
-        straight = self._straight(entity, doubts)
+        straight = self._straight(step_id, doubts)
         definition = self._materials.of(step_id)
         sets = self._context.properties.of(step_id)
-        clues = self._clues(entity, straight, definition, sets)
+        clues = self._clues(product, straight, definition, sets)
         scope = judge(clues)
         if scope.unknown:
             clues = replace(clues, properties=_told_by_properties(sets))
             scope = judge(clues)
         box = straight.box if straight is not None else None
         if scope.left_out is not None:
-            return Found(self._left_out(entity, identity, *scope.left_out), box)
+            return Found(self._left_out(product, identity, *scope.left_out), box)
         if scope.doubt is not None:
             doubts.reason(scope.doubt)
-        self._doubt_kind(entity, clues, box, doubts)
-        beam = self._beam(entity, identity, straight, clues, sets, doubts)
+        self._doubt_kind(product, clues, box, doubts)
+        beam = self._beam(product, identity, straight, clues, sets, doubts)
         return Found(beam, box)
 
-    def _straight(self, entity: Entity, doubts: _Doubts) -> Straight | None:
+    def _straight(self, step_id: int, doubts: _Doubts) -> Straight | None:
         try:
-            items = body_items(self._context, entity)
-            if len(items) != 1:
-                raise UnreadableError(_number_of_bodies(len(items)))
-            prism = read_prism(self._context, self._profiles, items[0])
-            straight = straighten(prism, self._context.placements.matrix(entity))
+            if step_id in self._bodies:
+                straight = self._bodies.straight(step_id)
+            else:
+                straight = self._read_straight(self._context.file.by_id(step_id))
         except UnreadableError as error:
             doubts.reason(str(error))
             return None
@@ -130,21 +130,23 @@ class BeamReader:
             _note_oblique(end, length, steep, doubts)
         return straight
 
+    def _read_straight(self, entity: Entity) -> Straight:
+        items = body_items(self._context, entity)
+        if len(items) != 1:
+            raise UnreadableError(_number_of_bodies(len(items)))
+        prism = read_prism(self._context, self._profiles, items[0])
+        return straighten(prism, self._context.placements.matrix(entity))
+
     def _clues(
         self,
-        entity: Entity,
+        product: Product,
         straight: Straight | None,
         definition: MaterialDefinition,
         sets: Sets,
     ) -> Clues:
-        step_id = entity.id()
+        step_id = product.step_id
         profile = straight.outline.name if straight is not None else ""
-        own = (
-            text_at(entity, NAME),
-            text_at(entity, OBJECT_TYPE),
-            self._type_name(step_id),
-            profile,
-        )
+        own = (product.name, product.object_type, self._type_name(step_id), profile)
         strength_class = sets.get(GENERAL, {}).get("StrengthClass")
         return Clues(
             definition=definition,
@@ -174,24 +176,24 @@ class BeamReader:
         )
 
     def _left_out(
-        self, entity: Entity, identity: Identity, reason: str, evidence: str
+        self, product: Product, identity: Identity, reason: str, evidence: str
     ) -> OutOfScope:
         return OutOfScope(
             guid=identity.guid,
-            step_id=entity.id(),
-            name=text_at(entity, NAME) or text_at(entity, TAG),
-            storey=self._storeys.name_of(entity.id()),
+            step_id=product.step_id,
+            name=product.name or product.tag,
+            storey=self._storeys.name_of(product.step_id),
             reason=reason,
             evidence=evidence,
         )
 
-    def _doubt_kind(self, entity: Entity, clues: Clues, box: Box | None, doubts: _Doubts) -> None:
+    def _doubt_kind(self, product: Product, clues: Clues, box: Box | None, doubts: _Doubts) -> None:
         """Reasons that lie in what the beam is: prestressed, with openings, lightweight."""
-        step_id = entity.id()
+        step_id = product.step_id
         relations = self._context.relations
         if self._tendons.in_beam(step_id, box):
             doubts.reason("prestressed: the model holds tendons in it")
-        elif "HOLLOWCORE" in (get(entity, "PredefinedType"), self._type(step_id)[1]):
+        elif HOLLOW_CORE in (product.own.strip("."), self._type(step_id)[1]):
             doubts.reason("prestressed: a hollow-core unit")
         elif named := _first(speaks_of_prestress, _all_names(clues)):
             doubts.reason(f'prestressed: named so in "{named}"')
@@ -202,14 +204,14 @@ class BeamReader:
 
     def _beam(
         self,
-        entity: Entity,
+        product: Product,
         identity: Identity,
         straight: Straight | None,
         clues: Clues,
         sets: Sets,
         doubts: _Doubts,
     ) -> Beam:
-        step_id = entity.id()
+        step_id = product.step_id
         readings = self._strengths.of(clues.definition, sets)
         readings += strengths_told(clues.properties)
         strength = concrete_strength(readings, identity.key)
@@ -221,10 +223,10 @@ class BeamReader:
             ordinal=identity.ordinal,
             step_id=step_id,
             model=self._model,
-            ifc_class=entity.is_a(),
-            name=text_at(entity, NAME),
-            tag=text_at(entity, TAG),
-            type_name=self._type_name(step_id) or text_at(entity, OBJECT_TYPE),
+            ifc_class=product.ifc_class,
+            name=product.name,
+            tag=product.tag,
+            type_name=self._type_name(step_id) or product.object_type,
             storey=self._storeys.name_of(step_id),
             axis=straight.axis if straight is not None else None,
             runs=_runs(straight),

@@ -6,6 +6,7 @@ from dataclasses import dataclass
 from typing import Any
 
 from ifccheck.beam import Axis, Run
+from ifccheck.ifc.classes import Classes
 from ifccheck.ifc.placements import Placements
 from ifccheck.ifc.properties import Properties
 from ifccheck.ifc.relations import Relations, read_relations
@@ -24,6 +25,7 @@ class Context:
     relations: Relations
     placements: Placements
     properties: Properties
+    classes: Classes
     statements: StepTable | None = None
     """The statements of the file, where they let the same of many be read at once."""
 
@@ -47,5 +49,6 @@ def make_context(file: Any, schema: str, statements: StepTable | None = None) ->
         relations=relations,
         placements=Placements(file, units.length, units.angle),
         properties=Properties(file, units, relations),
+        classes=Classes(file),
         statements=statements,
     )

@@ -3,23 +3,16 @@
 from __future__ import annotations
 
 from collections import Counter
-from collections.abc import Iterator, Mapping, Sequence
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 from typing import Any, NamedTuple
 
 from ifccheck.beam import Box, Member, Remark, Ring, Unmeasured
 from ifccheck.ifc.boxes import Boxes
 from ifccheck.ifc.context import Context
-from ifccheck.ifc.entity import (
-    GLOBAL_ID,
-    ILL_TYPED,
-    NAME,
-    OBJECT_TYPE,
-    TAG,
-    Entity,
-    UnreadableError,
-    text_at,
-)
+from ifccheck.ifc.entity import ILL_TYPED, Entity, UnreadableError
+from ifccheck.ifc.plain_bodies import PlainBodies
+from ifccheck.ifc.products import Product
 from ifccheck.ifc.profiles import Profiles
 from ifccheck.ifc.rough_boxes import GROWN, ROUGH, rough_box
 from ifccheck.ifc.storeys import Storeys
@@ -34,7 +27,7 @@ CLASSES = (
 """What may carry a beam or rest on it; a class that a schema lacks is passed over."""
 
 
-WEAK = ("insulation", "plastic")
+WEAK = frozenset(("insulation", "plastic"))
 """What no member that carries a beam is made of."""
 
 NOT_SOLID = (
@@ -52,6 +45,9 @@ ROUGHLY = (
     "IfcBuildingElementProxy",
 )  # fmt: skip
 """Members that a rough box is better for than none."""
+
+PLANNED = ("IfcWall", "IfcFooting", "IfcColumn")
+"""Members whose outline in plan is looked at."""
 
 THICK = 600.0
 """A wall with a box thicker than this is bent, or lies across the axes of its box, unless it is
@@ -75,63 +71,100 @@ class _Extent(NamedTuple):
     doubt: str = ""
 
 
-def read_members(
-    context: Context, profiles: Profiles, storeys: Storeys, known: Mapping[int, Box]
-) -> Members:
-    """Return every member with its box; ``known`` are boxes that were already found."""
-    boxes = Boxes(context, profiles)
-    members: list[Member] = []
-    unmeasured: list[Unmeasured] = []
-    unread: Counter[str] = Counter()
-    rough: Counter[str] = Counter()
-    for entity in _entities(context):
-        step_id = entity.id()
-        name = text_at(entity, NAME) or text_at(entity, TAG)
-        found = _extents(context, boxes, entity, known.get(step_id))
-        if not found and _is_any(entity, ROUGHLY):
-            found = _rough(context, profiles, entity)
-            rough[entity.is_a()] += bool(found)
-        if found is None:
-            unread[entity.is_a()] += 1
-        if not found and _is_any(entity, FRAMING):
-            storey = storeys.name_of(step_id)
-            unmeasured.append(Unmeasured(step_id, entity.is_a(), name, storey))
-        members += [
-            Member(
-                step_id=step_id,
-                guid=text_at(entity, GLOBAL_ID),
-                ifc_class=entity.is_a(),
-                name=name,
-                storey=storeys.name_of(step_id),
-                box=extent.box,
-                plan=extent.plan,
-                doubt=_use_doubt(entity) or extent.doubt,
-            )
-            for extent in found or ()
+class MemberReader:
+    """Reads where the members of one model are."""
+
+    def __init__(
+        self, context: Context, profiles: Profiles, storeys: Storeys, bodies: PlainBodies
+    ) -> None:
+        self._context = context
+        self._profiles = profiles
+        self._storeys = storeys
+        self._bodies = bodies
+        self._boxes = Boxes(context, profiles)
+
+    def read(self, products: Sequence[Product], known: Mapping[int, Box]) -> Members:
+        """Return every member with its box; ``known`` are boxes that were already found."""
+        members: list[Member] = []
+        unmeasured: list[Unmeasured] = []
+        unread: Counter[str] = Counter()
+        rough: Counter[str] = Counter()
+        for product in products:
+            found = self._extents(product, known.get(product.step_id))
+            if not found and self._is_any(product, ROUGHLY):
+                found = self._rough(product)
+                rough[product.ifc_class] += bool(found)
+            if found is None:
+                unread[product.ifc_class] += 1
+            if not found and self._is_any(product, FRAMING):
+                unmeasured.append(self._unmeasured(product))
+            members += [self._member(product, extent) for extent in found or ()]
+        return Members(tuple(members), tuple(unmeasured), (*_unread(unread), *_roughly(rough)))
+
+    def _member(self, product: Product, extent: _Extent) -> Member:
+        return Member(
+            step_id=product.step_id,
+            guid=product.guid,
+            ifc_class=product.ifc_class,
+            name=product.name or product.tag,
+            storey=self._storeys.name_of(product.step_id),
+            box=extent.box,
+            plan=extent.plan,
+            doubt=_use_doubt(product) or extent.doubt,
+        )
+
+    def _unmeasured(self, product: Product) -> Unmeasured:
+        storey = self._storeys.name_of(product.step_id)
+        return Unmeasured(product.step_id, product.ifc_class, product.name or product.tag, storey)
+
+    def _is_any(self, product: Product, classes: Sequence[str]) -> bool:
+        return self._context.classes.is_any(product.ifc_class, classes)
+
+    def _extents(self, product: Product, known: Box | None) -> list[_Extent] | None:
+        """Where a member is; nothing where it has no body, None where it cannot be read."""
+        if known is not None:
+            return [_Extent(known)]
+        try:
+            found = self._found_boxes(product)
+            if not self._is_any(product, PLANNED):
+                return [_Extent(box) for box in found]
+            plan = self._plan(product)
+        except (UnreadableError, *ILL_TYPED):
+            return None
+        unsure = plan is None and self._is_any(product, ("IfcWall",))
+        return [
+            _Extent(box, plan or (), UNFILLED if unsure and _thickness(box) > THICK else "")
+            for box in found
         ]
-    return Members(tuple(members), tuple(unmeasured), (*_unread(unread), *_roughly(rough)))
 
+    def _found_boxes(self, product: Product) -> list[Box]:
+        """The box of a member, or the boxes of its parts where only those have bodies."""
+        if product.step_id in self._bodies:
+            return [self._bodies.box(product.step_id)]
+        own = self._boxes.of(self._entity(product))
+        if own is not None:
+            return [own]
+        if self._is_any(product, ("IfcElementAssembly",)):
+            return []  # its parts are members by themselves
+        parts = self._context.relations.descendants(product.step_id)
+        entities = [part for part in map(self._context.file.by_id, parts) if _is_solid_part(part)]
+        found = [self._boxes.of(part) for part in entities]
+        return [box for box in found if box is not None]
 
-def _is_any(entity: Entity, classes: Sequence[str]) -> bool:
-    return any(entity.is_a(name) for name in classes)
+    def _plan(self, product: Product) -> Ring | None:
+        if product.step_id in self._bodies:
+            return self._bodies.plan(product.step_id)
+        return self._boxes.plan(self._entity(product))
 
+    def _rough(self, product: Product) -> list[_Extent] | None:
+        try:
+            box = rough_box(self._context, self._profiles, self._entity(product))
+        except (UnreadableError, *ILL_TYPED):
+            return None
+        return [_Extent(box, doubt=ROUGH)]
 
-def _extents(
-    context: Context, boxes: Boxes, entity: Entity, known: Box | None
-) -> list[_Extent] | None:
-    """Where a member is; nothing where it has no body, None where it cannot be read."""
-    try:
-        found = _boxes(context, boxes, entity, known)
-        if known is not None or not _is_any(entity, ("IfcWall", "IfcFooting", "IfcColumn")):
-            return [_Extent(box) for box in found]
-        plan = boxes.plan(entity)
-    except (UnreadableError, *ILL_TYPED):
-        return None
-    unsure = plan is None and entity.is_a("IfcWall")
-    return [
-        _Extent(box, plan or (), UNFILLED if unsure and _thickness(box) > THICK else "")
-        for box in found
-    ]
+    def _entity(self, product: Product) -> Entity:
+        return self._context.file.by_id(product.step_id)
 
 
 def _thickness(box: Box) -> float:
@@ -140,44 +173,24 @@ def _thickness(box: Box) -> float:
     return 2.0 * min(half for row, half in enumerate(box.half) if row != steep)
 
 
-def _rough(context: Context, profiles: Profiles, entity: Entity) -> list[_Extent] | None:
-    try:
-        return [_Extent(rough_box(context, profiles, entity), doubt=ROUGH)]
-    except (UnreadableError, *ILL_TYPED):
-        return None
-
-
-def _use_doubt(entity: Entity) -> str:
+def _use_doubt(product: Product) -> str:
     """Say that a member is named as what carries nothing."""
-    names = (text_at(entity, NAME), text_at(entity, OBJECT_TYPE))
-    families = {family for name in names for family in families_named(name)}
-    weak = families & set(WEAK)
+    families = families_named(product.name) | families_named(product.object_type)
+    weak = families & WEAK
     return f"it is named as {min(weak)}" if weak and CONCRETE not in families else ""
-
-
-def _boxes(context: Context, boxes: Boxes, entity: Entity, known: Box | None) -> list[Box]:
-    """The box of a member, or the boxes of its parts where only those have bodies."""
-    own = known or boxes.of(entity)
-    if own is not None:
-        return [own]
-    if entity.is_a("IfcElementAssembly"):
-        return []  # its parts are members by themselves
-    parts = map(context.file.by_id, context.relations.descendants(entity.id()))
-    found = [boxes.of(part) for part in parts if _is_solid_part(part)]
-    return [box for box in found if box is not None]
 
 
 def _is_solid_part(part: Entity) -> bool:
     return part.is_a("IfcElement") and not any(part.is_a(kind) for kind in NOT_SOLID)
 
 
-def _entities(context: Context) -> Iterator[Entity]:
-    seen: set[int] = set()
+def members_of(file: Any) -> list[Entity]:
+    """Return all members of a model, class by class."""
+    found: dict[int, Entity] = {}
     for name in CLASSES:
-        for entity in by_class(context.file, name):
-            if entity.id() not in seen:
-                seen.add(entity.id())
-                yield entity
+        for entity in by_class(file, name):
+            found.setdefault(entity.id(), entity)
+    return list(found.values())
 
 
 def by_class(file: Any, name: str) -> tuple[Entity, ...]:

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Iterable, Sequence
 from typing import Any
 
 import numpy as np
@@ -62,6 +63,10 @@ class Placements:
         for step_id, step in reversed(chain.items()):
             known = self._objects[step_id] = self._placed(step, known)
         return known
+
+    def learn(self, step_ids: Sequence[int], matrices: Iterable[Matrix]) -> None:
+        """Take over object placements in the building that were worked out elsewhere."""
+        self._objects.update(zip(step_ids, matrices, strict=True))
 
     def _placed(self, placement: Entity, parent: Matrix) -> Matrix:
         kind = placement.is_a()

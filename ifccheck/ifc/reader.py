@@ -10,10 +10,12 @@ from ifccheck.beam import Beam, Box, Model, OutOfScope, Reinforcement, Remark
 from ifccheck.errors import ModelError
 from ifccheck.ifc.beams import BeamReader, Identity
 from ifccheck.ifc.context import BeamFrame, Context, make_context
-from ifccheck.ifc.entity import GLOBAL_ID, ILL_TYPED, Entity, text_at
+from ifccheck.ifc.entity import ILL_TYPED
 from ifccheck.ifc.lexer import EXPORT_AGAIN
-from ifccheck.ifc.members import read_members
+from ifccheck.ifc.members import MemberReader, members_of
 from ifccheck.ifc.opening import OpenedModel
+from ifccheck.ifc.plain_bodies import PlainBodies
+from ifccheck.ifc.products import Product, read_products
 from ifccheck.ifc.profiles import Profiles
 from ifccheck.ifc.reinforcement import read_reinforcement
 from ifccheck.ifc.step_table import StepTable
@@ -43,26 +45,28 @@ def read_model(
 
 def _read(opened: OpenedModel, mapping: Mapping[str, str], statements: StepTable | None) -> Model:
     context = make_context(opened.file, opened.schema, statements)
-    entities = opened.file.by_type("IfcBeam")
-    if entities and "length" not in context.units.declared:
+    products = read_products(context, members_of(opened.file))
+    own = [one for one in products if context.classes.is_any(one.ifc_class, ("IfcBeam",))]
+    if own and "length" not in context.units.declared:
         raise ModelError(
             f"{opened.file_name}: declares no unit of length, so no beam can be measured; "
             "assign units to its project"
         )
     profiles, storeys = Profiles(context.placements), Storeys(context)
-    reader = BeamReader(context, profiles, storeys, opened.name)
+    bodies = PlainBodies(context, profiles, products)
+    reader = BeamReader(context, profiles, storeys, opened.name, bodies)
     beams: list[Beam] = []
     left_out: list[OutOfScope] = []
     known: dict[int, Box] = {}
-    for entity, identity in _identified(entities):
-        found = reader.read(entity, identity)
+    for product, identity in _identified(own):
+        found = reader.read(product, identity)
         if found.box is not None:
-            known[entity.id()] = found.box
+            known[product.step_id] = found.box
         if isinstance(found.beam, Beam):
             beams.append(found.beam)
         else:
             left_out.append(found.beam)
-    members = read_members(context, profiles, storeys, known)
+    members = MemberReader(context, profiles, storeys, bodies).read(products, known)
     return Model(
         name=opened.name,
         file_name=opened.file_name,
@@ -72,24 +76,24 @@ def _read(opened: OpenedModel, mapping: Mapping[str, str], statements: StepTable
         out_of_scope=tuple(left_out),
         members=members.members,
         storeys=storeys.all,
-        remarks=(*opened.remarks, *_repeats(entities), *reader.remarks, *members.remarks),
+        remarks=(*opened.remarks, *_repeats(own), *reader.remarks, *members.remarks),
         unmeasured=members.unmeasured,
     )
 
 
-def _identified(entities: Sequence[Entity]) -> Iterator[tuple[Entity, Identity]]:
+def _identified(products: Sequence[Product]) -> Iterator[tuple[Product, Identity]]:
     """Each beam with its key: the GlobalId, numbered from its second appearance on."""
     seen: Counter[str] = Counter()
-    for entity in entities:
-        guid = text_at(entity, GLOBAL_ID)
+    for product in products:
+        guid = product.guid
         ordinal = seen[guid]
         seen[guid] += 1
         key = guid if ordinal == 0 else f"{guid}~{ordinal + 1}"
-        yield entity, Identity(key, guid, ordinal)
+        yield product, Identity(key, guid, ordinal)
 
 
-def _repeats(entities: Sequence[Entity]) -> Iterator[Remark]:
-    counts = Counter(text_at(entity, GLOBAL_ID) for entity in entities)
+def _repeats(products: Sequence[Product]) -> Iterator[Remark]:
+    counts = Counter(product.guid for product in products)
     for guid, count in counts.items():
         if count > 1:
             yield Remark(

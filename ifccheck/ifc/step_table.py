@@ -7,7 +7,7 @@ bars asks for half a million of them. What is not written in the plainest way is
 from __future__ import annotations
 
 import re
-from collections.abc import Sequence
+from collections.abc import Iterator, Sequence
 
 import numpy as np
 
@@ -61,12 +61,18 @@ class StepTable:
         self, ids: Sequence[int], pattern: re.Pattern[bytes]
     ) -> list[re.Match[bytes] | None]:
         """What a pattern finds in statements, each from what follows its number to its end."""
+        data, match = self._data, pattern.fullmatch
+        return [match(data, start, stop) for start, stop in self._bounds(ids)]
+
+    def texts(self, ids: Sequence[int]) -> list[bytes]:
+        """What stands in statements behind their numbers; empty where there is none."""
+        return [self._data[start:stop] for start, stop in self._bounds(ids)]
+
+    def _bounds(self, ids: Sequence[int]) -> Iterator[tuple[int, int]]:
         rows = self.rows(np.array(ids, dtype=np.int64))
         starts = self._after_numbers[rows]
         stops = np.where(rows >= 0, self._stops[rows], starts)
-        data, match = self._data, pattern.fullmatch
-        bounds = zip(starts.tolist(), stops.tolist(), strict=True)
-        return [match(data, start, stop) for start, stop in bounds]
+        return zip(starts.tolist(), stops.tolist(), strict=True)
 
     def rest(self, cursors: Cursors, ids: Ints) -> list[bytes]:
         """What is left of statements from their cursors on; empty for those that are not plain."""
