@@ -155,7 +155,7 @@ def _values(building: Building, rng: random.Random) -> dict[str, Any]:
     ("unit", "schema"), [("MILLIMETRE", "IFC4"), ("METRE", "IFC2X3"), ("INCH", "IFC4X3")]
 )
 @given(seed=st.integers(0, 10**6))
-@settings(max_examples=12, deadline=None)
+@settings(max_examples=6, deadline=None)
 def test_models_in_bulk_are_those_read_one_by_one(
     unit: str, schema: str, style: str, seed: int
 ) -> None:
@@ -170,7 +170,7 @@ def test_models_in_bulk_are_those_read_one_by_one(
 
 @pytest.mark.parametrize("style", STYLES)
 @given(seed=st.integers(0, 10**6))
-@settings(max_examples=12, deadline=None)
+@settings(max_examples=6, deadline=None)
 def test_bodies_in_bulk_are_the_same_to_the_last_bit(style: str, seed: int) -> None:
     rng = random.Random(seed)
     text = as_written(random_building("IFC4", "INCH", rng).file.to_string(), rng, style)
