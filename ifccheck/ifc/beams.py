@@ -3,34 +3,31 @@
 from __future__ import annotations
 
 import re
-from collections.abc import Callable, Iterator
+from collections.abc import Callable
 from dataclasses import dataclass, field, replace
+from functools import lru_cache
 
-from ifccheck.beam import Beam, Box, Given, OutOfScope, Reason, Remark, Run
+from ifccheck.beam import Beam, Box, OutOfScope, Reason, Remark, Run
 from ifccheck.ifc.bodies import body_items, read_prism
+from ifccheck.ifc.concretes import Concretes
 from ifccheck.ifc.context import Context
 from ifccheck.ifc.entity import ILL_TYPED, Entity, UnreadableError, text
 from ifccheck.ifc.materials import MaterialDefinition, Materials
 from ifccheck.ifc.plain_bodies import PlainBodies
 from ifccheck.ifc.products import Product
 from ifccheck.ifc.profiles import Profiles
-from ifccheck.ifc.properties import PropertyValue, Sets
+from ifccheck.ifc.properties import Sets
 from ifccheck.ifc.scope import Clues, judge
 from ifccheck.ifc.storeys import Storeys
 from ifccheck.ifc.straight import Straight, straighten
-from ifccheck.ifc.strength import Strengths, concrete_strength, strengths_told
+from ifccheck.ifc.strength import GENERAL
 from ifccheck.ifc.tendons import Tendons
 from ifccheck.ifc.vocabulary import speaks_of_lightweight, speaks_of_prestress
 
-GENERAL = "Pset_ConcreteElementGeneral"
 GEOMETRY, MATERIALS = "geometry", "materials"
-COVERS = ("ConcreteCoverAtLinks", "ConcreteCover")
-THICKEST_COVER = 200.0
-"""Covers beyond this are misread units [mm]."""
+REINFORCING = ("IfcReinforcingBar", "IfcReinforcingMesh")
 HOLLOW_CORE = "HOLLOWCORE"
 SPEAKS_OF_MATERIAL = re.compile(r"materi[ae]l|werkstoff|matériau|betong?güte", re.IGNORECASE)
-DENSITIES = (1000.0, 3500.0)
-"""Densities that concrete has [kg/m3]."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -83,7 +80,7 @@ class BeamReader:
         self._model = model
         self._tendons = Tendons(context, profiles)
         self._materials = Materials(context)
-        self._strengths = Strengths(context)
+        self._concretes = Concretes(context)
         self._types: dict[int, tuple[str, str]] = {}
 
     @property
@@ -169,11 +166,9 @@ class BeamReader:
         return self._types[type_id]
 
     def _hosts_bars(self, step_id: int) -> bool:
-        by_id = self._context.file.by_id
-        return any(
-            part.is_a("IfcReinforcingBar") or part.is_a("IfcReinforcingMesh")
-            for part in map(by_id, self._context.relations.descendants(step_id))
-        )
+        by_id, is_any = self._context.file.by_id, self._context.classes.is_any
+        parts = self._context.relations.descendants(step_id)
+        return any(is_any(by_id(part).is_a(), REINFORCING) for part in parts)
 
     def _left_out(
         self, product: Product, identity: Identity, reason: str, evidence: str
@@ -188,14 +183,14 @@ class BeamReader:
         )
 
     def _doubt_kind(self, product: Product, clues: Clues, box: Box | None, doubts: _Doubts) -> None:
-        """Reasons that lie in what the beam is: prestressed, with openings, lightweight."""
+        """Reasons that lie in what the beam is: prestressed, with openings."""
         step_id = product.step_id
         relations = self._context.relations
         if self._tendons.in_beam(step_id, box):
             doubts.reason("prestressed: the model holds tendons in it")
         elif HOLLOW_CORE in (product.own.strip("."), self._type(step_id)[1]):
             doubts.reason("prestressed: a hollow-core unit")
-        elif named := _first(speaks_of_prestress, _all_names(clues)):
+        elif named := _first(speaks_of_prestress, clues):
             doubts.reason(f'prestressed: named so in "{named}"')
         if openings := relations.openings.get(step_id):
             doubts.reason(f"{_count(len(openings), 'opening')} not read yet")
@@ -212,11 +207,11 @@ class BeamReader:
         doubts: _Doubts,
     ) -> Beam:
         step_id = product.step_id
-        readings = self._strengths.of(clues.definition, sets)
-        readings += strengths_told(clues.properties)
-        strength = concrete_strength(readings, identity.key)
-        doubts.remarks += strength.remarks
-        densities = self._densities(clues, doubts)
+        concrete = self._concretes.of(clues.definition, sets, clues.properties)
+        for told in concrete.doubts:
+            doubts.remark(MATERIALS, told)
+        if concrete.least_density is None:
+            _doubt_density(clues, doubts)
         return Beam(
             key=identity.key,
             guid=identity.guid,
@@ -231,30 +226,14 @@ class BeamReader:
             axis=straight.axis if straight is not None else None,
             runs=_runs(straight),
             material=clues.definition.title,
-            concrete_strength=strength.given,
-            strength_reason=strength.reason,
-            concrete_density=min(densities, key=_value, default=None),
-            greatest_density=max(densities, key=_value, default=None),
-            cover=_cover(sets, doubts),
+            concrete_strength=concrete.strength,
+            strength_reason=concrete.strength_reason,
+            concrete_density=concrete.least_density,
+            greatest_density=concrete.greatest_density,
+            cover=concrete.cover,
             reasons=tuple(doubts.reasons),
             remarks=tuple(doubts.remarks),
         )
-
-    def _densities(self, clues: Clues, doubts: _Doubts) -> list[Given]:
-        """The densities that the materials state."""
-        found: list[Given] = []
-        for material in clues.definition.materials:
-            for name, values in self._context.properties.of_material(material.step_id).items():
-                if (value := values.get("MassDensity")) is not None:
-                    source = f'{name}.MassDensity of "{material.name}"'
-                    found += _stated_density(value, source, doubts)
-        if not found and (named := _first(speaks_of_lightweight, _all_names(clues))):
-            doubts.reason(f'lightweight concrete of unstated density: "{named}"', blocking=False)
-        return found
-
-
-def _value(given: Given) -> float:
-    return given.value
 
 
 def _told_by_properties(sets: Sets) -> tuple[tuple[str, str], ...]:
@@ -291,37 +270,19 @@ def _runs(straight: Straight | None) -> tuple[Run, ...]:
     return (Run(0.0, straight.axis.length, straight.outline),)
 
 
-def _cover(sets: Sets, doubts: _Doubts) -> Given | None:
-    """The thickest cover that the beam's set states: that makes the least of the depth."""
-    found: list[Given] = []
-    for name in COVERS:
-        value = sets.get(GENERAL, {}).get(name)
-        if value is None or value.value is None:
-            continue
-        source = f"{GENERAL}.{name}"
-        cover = value.number
-        if value.kind == "length" and cover is not None and 0.0 < cover <= THICKEST_COVER:
-            found.append(Given(cover, source))
-        else:
-            doubts.remark(MATERIALS, f"{source} of {value.value} is no cover: not used")
-    return max(found, key=_value, default=None)
+def _doubt_density(clues: Clues, doubts: _Doubts) -> None:
+    if named := _first(speaks_of_lightweight, clues):
+        doubts.reason(f'lightweight concrete of unstated density: "{named}"', blocking=False)
 
 
-def _stated_density(value: PropertyValue, source: str, doubts: _Doubts) -> Iterator[Given]:
-    density = value.number
-    if density is not None and DENSITIES[0] <= density <= DENSITIES[1]:
-        yield Given(density, source)
-    elif value.value:
-        doubts.remark(MATERIALS, f"{source} of {value.value} is no density of concrete: not used")
+def _first(speaks: Callable[[str], bool], clues: Clues) -> str:
+    """The first of the names of materials, then of the beam's own, that speaks of something."""
+    return _first_of(speaks, clues.definition.names) or _first_of(speaks, clues.names)
 
 
-def _all_names(clues: Clues) -> tuple[str, ...]:
-    materials = (part for one in clues.definition.materials for part in (one.name, one.description))
-    return (*materials, *clues.definition.set_names, *clues.names)
-
-
-def _first(speaks: Callable[[str], bool], names: tuple[str, ...]) -> str:
-    return next((name for name in names if speaks(name)), "")
+@lru_cache(maxsize=1024)
+def _first_of(speaks: Callable[[str], bool], names: tuple[str, ...]) -> str:
+    return next(filter(speaks, names), "")
 
 
 def _count(number: int, noun: str) -> str:

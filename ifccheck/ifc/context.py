@@ -48,7 +48,7 @@ def make_context(file: Any, schema: str, statements: StepTable | None = None) ->
         units=units,
         relations=relations,
         placements=Placements(file, units.length, units.angle),
-        properties=Properties(file, units, relations),
+        properties=Properties(file, units, relations, statements),
         classes=Classes(file),
         statements=statements,
     )

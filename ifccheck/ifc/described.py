@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import re
-from collections.abc import Callable, Iterable, Mapping, Sequence
+from collections.abc import Callable, Iterable, Iterator, Mapping, Sequence
 from dataclasses import dataclass, replace
 from typing import Any, Literal, TypeGuard
 
@@ -66,9 +66,12 @@ def read_described(
     """
     places = [(name, f"{OWN_SET}.{key}") for name, key in OWN_PROPERTIES.items()]
     places.extend(mapping.items())
+    wanted = {name for _, place in places for name in _names_of_sets(place)}
     found: dict[int, Reinforcement] = {}
     for beam in beams:
         sets = context.properties.of(beam)
+        if wanted.isdisjoint(sets):
+            continue
         given = [(name, place, _property(sets, place)) for name, place in places]
         stated = [(name, place, value) for name, place, value in given if _is_stated(value)]
         if stated:
@@ -76,12 +79,17 @@ def read_described(
     return found
 
 
+def _names_of_sets(place: str) -> Iterator[str]:
+    """What "Set.Property" may mean as the name of a set; it may hold dots itself."""
+    parts = place.split(".")
+    return (".".join(parts[:cut]) for cut in range(1, len(parts)))
+
+
 def _property(sets: Sets, place: str) -> PropertyValue | None:
     """The property at "Set.Property"; either name may hold dots itself."""
-    parts = place.split(".")
-    for cut in range(1, len(parts)):
-        values = sets.get(".".join(parts[:cut]))
-        if values is not None and (value := values.get(".".join(parts[cut:]))) is not None:
+    for name in _names_of_sets(place):
+        values = sets.get(name)
+        if values is not None and (value := values.get(place[len(name) + 1 :])) is not None:
             return value
     return None
 

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 from dataclasses import dataclass
+from functools import cached_property
 from typing import TYPE_CHECKING
 
 from ifccheck.ifc.entity import Entity, get, text
@@ -22,7 +23,7 @@ class Material:
     description: str = ""
 
 
-@dataclass(frozen=True, slots=True)
+@dataclass(frozen=True)
 class MaterialDefinition:
     """All that an element's material definition names."""
 
@@ -31,10 +32,16 @@ class MaterialDefinition:
     """Names of layer, profile and constituent sets and of their parts."""
     profile_names: tuple[str, ...] = ()
 
-    @property
+    @cached_property
     def title(self) -> str:
         """The materials' names, for people."""
         return ", ".join(dict.fromkeys(one.name for one in self.materials if one.name))
+
+    @cached_property
+    def names(self) -> tuple[str, ...]:
+        """All names and descriptions but those of profiles."""
+        materials = (part for one in self.materials for part in (one.name, one.description))
+        return (*materials, *self.set_names)
 
 
 NONE = MaterialDefinition()

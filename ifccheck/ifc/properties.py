@@ -2,12 +2,23 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator, Mapping, Sequence
+import re
+from collections.abc import Iterable, Iterator, Mapping, Sequence
 from dataclasses import dataclass
+from itertools import chain
 from typing import Any
 
 from ifccheck.ifc.entity import Entity, UnreadableError, get, several, text, text_at
 from ifccheck.ifc.relations import Relations
+from ifccheck.ifc.statement_patterns import (
+    REFERENCE_OR_NOTHING,
+    TEXT,
+    TEXT_OR_NOTHING,
+    numbers_of,
+    references,
+    statement,
+)
+from ifccheck.ifc.step_table import StepTable
 from ifccheck.ifc.units import MEASURE_KINDS, ModelUnits, UnitKind, scale_of
 
 HELD_BY = {
@@ -36,7 +47,6 @@ class PropertyValue:
     factor: float | None
     """Times ``value`` gives N, mm, MPa, rad, kg/m3; None where it has no unit, or one that
     contradicts its measure."""
-    entity: int
     kind: UnitKind | None = None
 
     @property
@@ -49,17 +59,33 @@ class PropertyValue:
 
 Set = Mapping[str, PropertyValue]
 Sets = Mapping[str, Set]
+Pairs = tuple[tuple[str, PropertyValue], ...]
+
+_NAME = rb"'([ -&(-\[\]-~]*+)'"
+"""A name that says itself: without escapes."""
+SET = statement(b"IFCPROPERTYSET", TEXT, REFERENCE_OR_NOTHING, _NAME, TEXT_OR_NOTHING, references())
 
 
 class Properties:
     """The property sets of a model's objects, read on demand and kept."""
 
-    def __init__(self, file: Any, units: ModelUnits, relations: Relations) -> None:
+    def __init__(
+        self,
+        file: Any,
+        units: ModelUnits,
+        relations: Relations,
+        statements: StepTable | None = None,
+    ) -> None:
         self._file = file
         self._units = units
         self._relations = relations
+        self._statements = statements
         self._by_object: dict[int, Sets] = {}
         self._by_set: dict[int, Set] = {}
+        self._plain: dict[int, re.Match[bytes]] = {}
+        """Name and references of the sets that are written plainly."""
+        self._by_text: dict[bytes, Pairs] = {}
+        self._by_texts: dict[tuple[bytes, ...], Set] = {}
 
     def of(self, step_id: int) -> Sets:
         """Return the sets of an object by name; its own values go before those of its type."""
@@ -67,32 +93,62 @@ class Properties:
             self._by_object[step_id] = self._sets(self._relations.property_sets(step_id))
         return self._by_object[step_id]
 
+    def find(self, step_ids: Iterable[int]) -> None:
+        """Find the sets of many objects that will be asked about, in the file's text."""
+        if self._statements is not None:
+            sets = dict.fromkeys(chain.from_iterable(map(self._relations.property_sets, step_ids)))
+            matches = zip(sets, self._statements.matches(list(sets), SET), strict=True)
+            self._plain.update({step_id: found for step_id, found in matches if found})
+
     def of_material(self, material_id: int) -> Sets:
         """Return the property sets of a material."""
         return self._sets(tuple(self._relations.material_properties.get(material_id, ())))
 
     def _sets(self, set_ids: tuple[int, ...]) -> Sets:
-        by_name: dict[str, list[Entity]] = {}
+        by_name: dict[str, list[int]] = {}
         for set_id in set_ids:
-            entity = self._file.by_id(set_id)
-            by_name.setdefault(text(entity, "Name") or entity.is_a(), []).append(entity)
+            by_name.setdefault(self._name(set_id), []).append(set_id)
         return _SetsOfObject(self, by_name)
 
-    def values(self, entities: Sequence[Entity]) -> Set:
+    def _name(self, set_id: int) -> str:
+        if set_id in self._plain and (name := self._plain[set_id][1].decode("ascii").strip()):
+            return name
+        entity = self._file.by_id(set_id)
+        return text(entity, "Name") or str(entity.is_a())
+
+    def values(self, set_ids: Sequence[int]) -> Set:
         """Return the values of sets of one name; of two values the first counts."""
-        if len(entities) == 1:
-            return self._values_of(entities[0])
+        if len(set_ids) == 1:
+            return self._values_of(set_ids[0])
         merged: dict[str, PropertyValue] = {}
-        for entity in entities:
-            for key, value in self._values_of(entity).items():
+        for set_id in set_ids:
+            for key, value in self._values_of(set_id).items():
                 merged.setdefault(key, value)
         return merged
 
-    def _values_of(self, entity: Entity) -> Set:
-        step_id = entity.id()
-        if step_id not in self._by_set:
-            self._by_set[step_id] = dict(self._values(entity))
-        return self._by_set[step_id]
+    def _values_of(self, set_id: int) -> Set:
+        if set_id not in self._by_set:
+            plain = self._plain_values(set_id)
+            values = dict(self._values(self._file.by_id(set_id))) if plain is None else plain
+            self._by_set[set_id] = values
+        return self._by_set[set_id]
+
+    def _plain_values(self, set_id: int) -> Set | None:
+        """The values of a set that is written plainly, those of one text read once."""
+        if set_id not in self._plain or self._statements is None:
+            return None
+        step_ids = numbers_of(self._plain[set_id][2])
+        texts = tuple(map(self._statements.text, step_ids))
+        if texts not in self._by_texts:
+            each = map(self._pairs, step_ids, texts)
+            self._by_texts[texts] = dict(pair for pairs in each for pair in pairs)
+        return self._by_texts[texts]
+
+    def _pairs(self, step_id: int, text: bytes) -> Pairs:
+        """Names and values of a property; ``text`` is all of it but its number."""
+        if text not in self._by_text or not text:
+            self._by_text[text] = tuple(self._property(self._file.by_id(step_id), ""))
+        return self._by_text[text]
 
     def _values(self, entity: Entity) -> Iterator[tuple[str, PropertyValue]]:
         kind = entity.is_a()
@@ -122,10 +178,10 @@ class Properties:
 
     def _value(self, item: Entity, wrapped: Entity | None, unit: Entity | None) -> PropertyValue:
         if wrapped is None:
-            return PropertyValue(None, "", None, item.id())
+            return PropertyValue(None, "", None)
         measure = wrapped.is_a()
         kind, factor = self._scale(measure, unit)
-        return PropertyValue(wrapped.get_argument(0), measure, factor, item.id(), kind)
+        return PropertyValue(wrapped.get_argument(0), measure, factor, kind)
 
     def _list(
         self, item: Entity, wrapped: tuple[Entity, ...], unit: Entity | None
@@ -134,14 +190,14 @@ class Properties:
             return self._value(item, wrapped[0] if wrapped else None, unit)
         first = self._value(item, wrapped[0], unit)
         values = tuple(entity.get_argument(0) for entity in wrapped)
-        return PropertyValue(values, first.measure, first.factor, item.id(), first.kind)
+        return PropertyValue(values, first.measure, first.factor, first.kind)
 
     def _quantity(self, quantity: Entity) -> PropertyValue:
         measure = quantity.is_a()
         if not quantity.is_a("IfcPhysicalSimpleQuantity"):
-            return PropertyValue(None, measure, None, quantity.id())
+            return PropertyValue(None, measure, None)
         kind, factor = self._scale(measure, get(quantity, "Unit"))
-        return PropertyValue(quantity.get_argument(3), measure, factor, quantity.id(), kind)
+        return PropertyValue(quantity.get_argument(3), measure, factor, kind)
 
     def _scale(self, measure: str, unit: Entity | None) -> tuple[UnitKind | None, float | None]:
         kind = MEASURE_KINDS.get(measure)
@@ -167,14 +223,14 @@ class Properties:
                 factor = self._units.of_measure(measure)
                 yield (
                     name,
-                    PropertyValue(value, measure, factor, entity.id(), MEASURE_KINDS[measure]),
+                    PropertyValue(value, measure, factor, MEASURE_KINDS[measure]),
                 )
 
 
 class _SetsOfObject(Mapping[str, Set]):
     """The sets of one object; the values of a set are read when it is first looked into."""
 
-    def __init__(self, properties: Properties, by_name: dict[str, list[Entity]]) -> None:
+    def __init__(self, properties: Properties, by_name: dict[str, list[int]]) -> None:
         self._properties = properties
         self._by_name = by_name
         self._read: dict[str, Set] = {}
@@ -183,6 +239,12 @@ class _SetsOfObject(Mapping[str, Set]):
         if name not in self._read:
             self._read[name] = self._properties.values(self._by_name[name])
         return self._read[name]
+
+    def get(self, name: str, default: Any = None) -> Any:
+        return self[name] if name in self._by_name else default
+
+    def __contains__(self, name: object) -> bool:
+        return name in self._by_name
 
     def __iter__(self) -> Iterator[str]:
         return iter(self._by_name)

@@ -55,6 +55,7 @@ def _read(opened: OpenedModel, mapping: Mapping[str, str], statements: StepTable
     profiles, storeys = Profiles(context.placements), Storeys(context)
     bodies = PlainBodies(context, profiles, products)
     reader = BeamReader(context, profiles, storeys, opened.name, bodies)
+    context.properties.find(product.step_id for product in own)
     beams: list[Beam] = []
     left_out: list[OutOfScope] = []
     known: dict[int, Box] = {}

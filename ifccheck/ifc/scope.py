@@ -50,21 +50,41 @@ class Scope:
 
 def judge(clues: Clues) -> Scope:
     """Decide what a beam is from all that the model says of it."""
-    stated = list(_material_evidence(clues.definition))
-    if clues.hosts_bars:
+    telling = tuple(name for name in clues.names if _tells(name))
+    return _judged(
+        clues.definition, telling, clues.hosts_bars, clues.concrete_class, clues.properties
+    )
+
+
+@lru_cache(maxsize=8192)
+def _tells(name: str) -> bool:
+    """Whether a name speaks of what a beam is: most are marks that are given once."""
+    return bool(_name_evidence(name, concrete=False)) or BEAM_WORDS.search(name) is not None
+
+
+@lru_cache(maxsize=8192)
+def _judged(
+    definition: MaterialDefinition,
+    names: tuple[str, ...],
+    hosts_bars: bool,
+    concrete_class: bool,
+    properties: tuple[tuple[str, str], ...],
+) -> Scope:
+    stated = list(_material_evidence(definition))
+    if hosts_bars:
         stated.append((CONCRETE, "it hosts reinforcing bars"))
-    if clues.concrete_class:
+    if concrete_class:
         stated.append((CONCRETE, "it states a concrete strength class"))
-    stated += _property_evidence(clues.properties)
+    stated += _property_evidence(properties)
     concrete = any(family == CONCRETE for family, _ in stated)
-    named = [piece for name in clues.names for piece in _name_evidence(name, concrete)]
-    used = _use(named + stated, clues.names, concrete)
+    named = [piece for name in names for piece in _name_evidence(name, concrete)]
+    used = _use(named + stated, names, concrete)
     if used is not None:
         return used
     return _by_material(
         [one for one in stated if one[0] not in USES],
         [one for one in named if one[0] not in USES],
-        clues.definition,
+        definition,
     )
 
 

@@ -37,6 +37,8 @@ def references(name: bytes = b"") -> bytes:
 
 def numbers_of(references: bytes) -> list[int]:
     """Return the numbers of the references in a list."""
+    if b"," not in references:
+        return [int(references[1:])]
     numbers = references.replace(b"#", b"")
     if len(numbers) < LONG:
         return list(map(int, numbers.split(b",")))

@@ -11,9 +11,9 @@ from collections.abc import Iterable, Iterator, Sequence
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
-from ifccheck.beam import Given, Reason, Remark
+from ifccheck.beam import Given, Reason
 from ifccheck.ifc.materials import Material, MaterialDefinition
-from ifccheck.ifc.properties import PropertyValue, Sets
+from ifccheck.ifc.properties import PropertyValue, Set
 from ifccheck.ifc.strength_texts import (
     Reading,
     Unread,
@@ -26,7 +26,8 @@ from ifccheck.ifc.strength_texts import (
 if TYPE_CHECKING:
     from ifccheck.ifc.context import Context
 
-STAGE = "materials"
+GENERAL, OF_MATERIAL = "Pset_ConcreteElementGeneral", "Pset_MaterialConcrete"
+"""Sets of a beam that may state its strength."""
 
 Said = Reading | Unread
 """What one source says of a strength."""
@@ -38,10 +39,10 @@ class Strength:
 
     given: Given | None
     reason: Reason | None
-    remarks: tuple[Remark, ...]
+    doubts: tuple[str, ...]
 
 
-def concrete_strength(readings: Sequence[Said], beam: str) -> Strength:
+def concrete_strength(readings: Sequence[Said]) -> Strength:
     """Return the strength that the sources of one beam support, and what is doubtful of it."""
     read = [each for each in readings if isinstance(each, Reading)]
     unread = [each for each in readings if isinstance(each, Unread)]
@@ -57,11 +58,7 @@ def concrete_strength(readings: Sequence[Said], beam: str) -> Strength:
         lowest = next(one for one in read if (one.low, one.high) == lowest_of(ranges))
         texts += _doubts_of(read, lowest)
         given = Given(round(lowest.low, 6), lowest.source)
-    return Strength(
-        given if reason is None else None,
-        reason,
-        tuple(Remark(beam, STAGE, text, "doubt") for text in texts),
-    )
+    return Strength(given if reason is None else None, reason, tuple(texts))
 
 
 def _cannot_be_read(one: Unread) -> str:
@@ -103,9 +100,9 @@ class Strengths:
         self._context = context
         self._by_material: dict[int, tuple[Said, ...]] = {}
 
-    def of(self, definition: MaterialDefinition, sets: Sets) -> list[Said]:
-        """Return what a beam's property sets and materials say of its strength."""
-        readings = list(_from_sets(sets))
+    def of(self, definition: MaterialDefinition, general: Set, of_material: Set) -> list[Said]:
+        """Return what two of a beam's property sets and its materials say of its strength."""
+        readings = list(_from_sets(general, of_material))
         for material in definition.materials:
             readings += self._of_material(material)
         for name in definition.set_names:
@@ -145,13 +142,10 @@ def _from_text(text: str, source: str, bare: bool = False) -> Iterator[Said]:
         yield reading
 
 
-def _from_sets(sets: Sets) -> Iterator[Said]:
-    general = "Pset_ConcreteElementGeneral"
-    stated = sets.get(general, {}).get("StrengthClass")
-    yield from _from_value(stated, f"{general}.StrengthClass")
-    for name in (general, "Pset_MaterialConcrete"):
-        stated = sets.get(name, {}).get("CompressiveStrength")
-        yield from _from_value(stated, f"{name}.CompressiveStrength")
+def _from_sets(general: Set, of_material: Set) -> Iterator[Said]:
+    yield from _from_value(general.get("StrengthClass"), f"{GENERAL}.StrengthClass")
+    for name, values in ((GENERAL, general), (OF_MATERIAL, of_material)):
+        yield from _from_value(values.get("CompressiveStrength"), f"{name}.CompressiveStrength")
 
 
 def _from_value(value: PropertyValue | None, source: str) -> Iterator[Said]:

@@ -138,6 +138,7 @@ def _pattern(pairs: list[tuple[str, str]], whole_words: bool) -> re.Pattern[str]
     return re.compile(rf"(?<!\w)(?:{body})(?!\w)" if whole_words else body)
 
 
+NO_FAMILIES: frozenset[str] = frozenset()
 _STEMS = _alternatives(STEMS)
 _STEM_FAMILY = dict(_STEMS)
 _STEM = _pattern(_STEMS, whole_words=False)
@@ -169,7 +170,8 @@ def speaks_of_lightweight(name: str) -> bool:
 def families_named(text: str) -> frozenset[str]:
     """Return the materials and uses that the name of a member or a type speaks of."""
     families, rest = _split(text)
-    return families | {_USE_FAMILY[word] for word in _USE.findall(rest)}
+    uses = _USE.findall(rest)
+    return families | {_USE_FAMILY[word] for word in uses} if uses else families
 
 
 @lru_cache(maxsize=1024)
@@ -184,5 +186,7 @@ def families_of_material(text: str) -> frozenset[str]:
 def _split(text: str) -> tuple[frozenset[str], str]:
     """The families of the phrases in a text, and what these leave of it."""
     folded = text.casefold()
+    if _STEM.search(folded) is None:
+        return NO_FAMILIES, folded.replace("_", " ")
     families = frozenset(_STEM_FAMILY[phrase] for phrase in _STEM.findall(folded)) - {NOTHING}
     return families, _STEM.sub(" \x00 ", folded).replace("_", " ")
