@@ -13,7 +13,7 @@ import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
 
-from ifccheck.ifc.stirrup_sets import zones_of_one_spacing
+from ifccheck.ifc.stirrup_sets import Zones, zones_of_one_spacing
 from tests.barred_beams import (
     LENGTH,
     Curve,
@@ -442,30 +442,92 @@ def test_legs_in_the_web_are_none() -> None:
     assert [zone.legs for zone in found.stirrups] == [2]
 
 
-@settings(max_examples=300, deadline=None)
-@given(
-    st.lists(st.tuples(st.floats(20.0, 900.0), st.sampled_from([2, 4])), min_size=2, max_size=25),
-    st.floats(0.0, 700.0),
-    st.floats(0.0, 900.0),
+Steps = list[tuple[float, int]]
+"""Gaps before stirrups, and the legs of these."""
+MANY_STEPS = st.lists(
+    st.tuples(
+        st.floats(20.0, 900.0) | st.sampled_from([100.0, 103.0, 106.0, 200.0]),
+        st.sampled_from([2, 2, 2, 4]),
+    ),
+    min_size=1,
+    max_size=25,
 )
+
+
+def zones_of(beams: list[Steps], beyond: float) -> tuple[Zones, list[list[float]]]:
+    """Zones of several beams that end a stretch beyond their last stirrups, and these."""
+    places = [np.cumsum([gap for gap, _ in steps]).tolist() for steps in beams]
+    legs = np.array([count for steps in beams for _, count in steps], dtype=np.intp)
+    counts = [len(xs) for xs in places]
+    zones = zones_of_one_spacing(
+        np.repeat(np.arange(len(beams)), counts),
+        np.array([x for xs in places for x in xs]),
+        legs * TEN,
+        legs,
+        np.repeat([xs[-1] + beyond for xs in places], counts),
+    )
+    return zones, places
+
+
+@settings(max_examples=300, deadline=None)
+@given(MANY_STEPS, st.floats(0.0, 900.0))
 def test_zones_cover_without_gaps_and_promise_no_more_than_there_is(
-    steps: list[tuple[float, int]], first: float, beyond: float
+    steps: Steps, beyond: float
 ) -> None:
-    xs = np.cumsum([first, *(gap for gap, _ in steps[1:])]).tolist()
-    legs = [count for _, count in steps]
-    areas = [count * TEN for count in legs]
-    length = xs[-1] + beyond
-    zones = zones_of_one_spacing(xs, areas, legs, length)
-    assert all(one.end == other.start for one, other in pairwise(zones))
-    assert 0.0 <= zones[0].start <= xs[0]
-    assert xs[-1] <= zones[-1].end <= length
+    zones, (xs,) = zones_of([steps], beyond)
+    assert (len(xs) < 2) == (len(zones.start) == 0)
+    if len(xs) < 2:
+        return
+    assert zones.end[:-1].tolist() == zones.start[1:].tolist()
+    assert 0.0 <= zones.start[0] <= xs[0]
+    assert xs[-1] <= zones.end[-1] <= xs[-1] + beyond
     for index, (x, following) in enumerate(pairwise(xs)):
-        (zone,) = [z for z in zones if z.first <= index < z.last]
-        assert zone.start <= x
-        assert following <= zone.end
-        assert zone.spacing >= following - x
-        least = min(areas[zone.first : zone.last + 1])
-        assert least <= min(areas[index : index + 2])
+        (zone,) = np.flatnonzero((zones.first <= index) & (index < zones.last)).tolist()
+        assert zones.start[zone] <= x
+        assert following <= zones.end[zone]
+        assert zones.spacing[zone] >= following - x
+        held = [count for _, count in steps[zones.first[zone] : zones.last[zone] + 1]]
+        assert min(held) <= min(count for _, count in steps[index : index + 2])
+
+
+def zones_by_definition(steps: Steps, length: float) -> list[tuple[float, float, float, int, int]]:
+    """Start, end, spacing, first and last stirrup of each zone of a beam, gap by gap."""
+    xs = np.cumsum([gap for gap, _ in steps]).tolist()
+    gaps = [after - x for x, after in pairwise(xs)]
+    lesser = [min(one, other) for (_, one), (_, other) in pairwise(steps)]
+    begins = [0]
+    for index in range(1, len(gaps)):
+        held = gaps[begins[-1] : index + 1]
+        if lesser[index] != lesser[begins[-1]] or max(held) > 1.05 * min(held):
+            begins.append(index)
+    stops = [*begins[1:], len(gaps)]
+    widest = [max(gaps[a:b]) for a, b in zip(begins, stops, strict=True)]
+    found = []
+    for zone, (a, b) in enumerate(zip(begins, stops, strict=True)):
+        beside = [widest[k] for k in (zone - 1, zone + 1) if 0 <= k < len(begins)]
+        lone = b == a + 1 and beside and widest[zone] < min(beside)
+        spacing = min(beside) if lone else widest[zone]
+        start, end = xs[a], xs[b]
+        if zone == 0:
+            start = 0.0 if start <= spacing else start - spacing / 2.0
+        if zone == len(begins) - 1:
+            end = length if length - end <= spacing else end + spacing / 2.0
+        found.append((start, end, spacing, a, b))
+    return found
+
+
+@settings(max_examples=300, deadline=None)
+@given(st.lists(MANY_STEPS, max_size=6), st.floats(0.0, 900.0))
+def test_zones_of_many_beams_are_those_found_gap_by_gap(beams: list[Steps], beyond: float) -> None:
+    zones, places = zones_of(beams, beyond)
+    expected, before = [], 0
+    for steps, xs in zip(beams, places, strict=True):
+        if len(xs) > 1:
+            for *stretch, first, last in zones_by_definition(steps, xs[-1] + beyond):
+                expected.append((*stretch, first + before, last + before))
+        before += len(xs)
+    columns = (zones.start, zones.end, zones.spacing, zones.first, zones.last)
+    assert list(zip(*(column.tolist() for column in columns), strict=True)) == expected
 
 
 def test_thirty_four_stirrups_of_an_open_model(open_models: object) -> None:

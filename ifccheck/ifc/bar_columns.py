@@ -24,7 +24,11 @@ class BarColumns:
 
     product: Ints
     """Which of the products asked for each bar is."""
+    name: Ints
+    """Which of the names each bar has."""
     names: Sequence[str]
+    datum: Ints
+    """Which of the data each bar has."""
     data: Sequence[Data]
     outer: Ints
     """Outer matrix of each bar."""
@@ -129,13 +133,14 @@ def concatenated(first: BarColumns, second: BarColumns) -> BarColumns:
     order = np.argsort(product, kind="stable")
     rank = np.empty(len(order), dtype=np.intp)
     rank[order] = np.arange(len(order))
-    names, data = [*first.names, *second.names], [*first.data, *second.data]
     bar = rank[np.concatenate((first.bar, second.bar + count))]
     strand = np.argsort(bar, kind="stable")
     return BarColumns(
         product=product[order],
-        names=[names[at] for at in order.tolist()],
-        data=[data[at] for at in order.tolist()],
+        name=np.concatenate((first.name, second.name + len(first.names)))[order],
+        names=[*first.names, *second.names],
+        datum=np.concatenate((first.datum, second.datum + len(first.data)))[order],
+        data=[*first.data, *second.data],
         outer=np.concatenate((first.outer, second.outer))[order],
         move=np.concatenate((first.move, second.move))[order],
         bar=bar[strand],

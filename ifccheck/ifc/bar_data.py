@@ -2,11 +2,15 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Iterator
+from collections.abc import Iterable, Iterator, Mapping, Sequence
 from dataclasses import dataclass
+from itertools import repeat
 from typing import Any
 
+import numpy as np
+
 from ifccheck.beam import Given
+from ifccheck.ifc.bar_paths import Ints
 from ifccheck.ifc.bar_sizes import (
     GREATEST_YIELD,
     LEAST_YIELD,
@@ -103,15 +107,18 @@ class BarData:
         material = relations.materials.get(step_id) or relations.materials.get(type_id or 0)
         return type_id, material, None if sets is None else tuple(sets)
 
-    def all_related(self, step_ids: Iterable[int]) -> list[Related]:
-        """Return the same of many bars, most of which have a material at best."""
+    def relations_of(self, step_ids: Ints) -> tuple[Ints, ...]:
+        """Numbers of what bars are related to: the same where ``related`` gives the same."""
         relations = self._context.relations
-        some = relations.types.keys() | relations.sets.keys()
-        materials = relations.materials
-        return [
-            self.related(one) if one in some else (None, materials.get(one), None)
-            for one in step_ids
-        ]
+        ids = step_ids.tolist()
+        sets = [relations.sets.get(one, ()) for one in ids] if relations.sets else []
+        numbers: dict[tuple[int, ...], int] = {(): 0}
+        held = [numbers.setdefault(tuple(one), len(numbers)) if one else 0 for one in sets]
+        return (
+            _looked_up(relations.types, ids),
+            _looked_up(relations.materials, ids),
+            np.array(held or [0] * len(ids), dtype=np.intp),
+        )
 
     def size_in(self, name: str) -> str:
         """The bar size in the name of a bar."""
@@ -238,6 +245,11 @@ class BarData:
             number = None if value is None else value.number
             if number is not None and LEAST_YIELD <= number <= GREATEST_YIELD:
                 yield Given(number, f"material {material.name!r} {set_name}.{YIELD_PROPERTY}")
+
+
+def _looked_up(of: Mapping[int, int], ids: Sequence[int]) -> Ints:
+    """What each has in a mapping, 0 for nothing."""
+    return np.fromiter(map(of.get, ids, repeat(0)), dtype=np.intp, count=len(ids))
 
 
 def _index(known: list[Any], new: object) -> int:

@@ -2,7 +2,8 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator, Sequence
+from collections.abc import Iterator
+from dataclasses import dataclass
 
 import numpy as np
 
@@ -22,22 +23,22 @@ def longitudinal_bars(model: Measured, runs: Runs) -> dict[int, tuple[Bars, ...]
     centre = np.clip((runs.start + runs.end) / 2.0, 0.0, model.places.frames.length[beam])
     bounds = model.places.frames.bounds_at(beam, centre)
     height, steep = settle_heights(runs, (bounds[:, 2] + bounds[:, 3]) / 2.0)
-    model.remark(runs.row[steep].tolist(), "crosses the middle of the section, not counted")
+    model.remark(runs.row[steep], "crosses the middle of the section, not counted")
     sloping = ~steep & (runs.highest - runs.lowest > SLOPING)
-    model.remark(
-        runs.row[sloping].tolist(), "slopes: taken at its height nearest to the section's middle"
-    )
+    model.remark(runs.row[sloping], "slopes: taken at its height nearest to the section's middle")
     bent = runs.row[runs.poor_bend]
-    model.remark(bent.tolist(), "ends in a bend short of a standard hook: taken as straight")
+    model.remark(bent, "ends in a bend short of a standard hook: taken as straight")
     runs, counted = without_clashes(model, runs, beam, ~steep)
     labels = _labels(model, runs, beam, counted)
+    groups = _equal(runs, labels, height)
+    groups = groups.take(np.flatnonzero(counted[groups.run]))
+    order = np.lexsort((groups.end, groups.start, groups.z, beam[groups.run]))
+    groups = groups.take(order)
     found: dict[int, list[Bars]] = {}
-    for run, bars in _equal(model, runs, labels, height):
-        if counted[run]:
-            found.setdefault(int(beam[run]), []).append(bars)
-    return {
-        key: tuple(sorted(one, key=lambda b: (b.z, b.start, b.end))) for key, one in found.items()
-    }
+    beams = beam[groups.run].tolist()
+    for key, bars in zip(beams, _all_bars(model, runs, groups), strict=True):
+        found.setdefault(key, []).append(bars)
+    return {key: tuple(bars) for key, bars in found.items()}
 
 
 def _labels(model: Measured, runs: Runs, beam: Ints, counted: Bools) -> Ints:
@@ -50,48 +51,74 @@ def _labels(model: Measured, runs: Runs, beam: Ints, counted: Bools) -> Ints:
     return ((label * 2 + runs.start_hook) * 2 + runs.end_hook) * 2 + counted
 
 
-def _equal(model: Measured, runs: Runs, labels: Ints, height: Floats) -> Iterator[tuple[int, Bars]]:
-    """Groups of equal bars, each with one of its runs."""
+@dataclass(frozen=True, slots=True)
+class _Groups:
+    """Equal runs of bars (G)."""
+
+    run: Ints
+    """One of the runs of each."""
+    first: Ints
+    """Where the runs of each begin and stop in ``runs``."""
+    stop: Ints
+    start: Floats
+    end: Floats
+    z: Floats
+    runs: Ints
+    """The runs, those of one group after those of another."""
+
+    def take(self, kept: Ints) -> _Groups:
+        """Some of the groups."""
+        return _Groups(
+            self.run[kept],
+            self.first[kept],
+            self.stop[kept],
+            self.start[kept],
+            self.end[kept],
+            self.z[kept],
+            self.runs,
+        )
+
+
+def _equal(runs: Runs, labels: Ints, height: Floats) -> _Groups:
     order, first = equal_bars(labels, runs, height)
+    stop = np.append(first[1:], len(order)).astype(np.intp)[: len(first)]
     if not len(order):
-        return
-    stop = np.append(first[1:], len(order))
+        return _Groups(first, first, stop, height, height, height, order)
+    return _Groups(
+        run=order[first],
+        first=first,
+        stop=stop,
+        start=np.maximum.reduceat(runs.start[order], first),
+        end=np.minimum.reduceat(runs.end[order], first),
+        z=np.add.reduceat(height[order], first) / (stop - first),
+        runs=order,
+    )
+
+
+def _all_bars(model: Measured, runs: Runs, groups: _Groups) -> Iterator[Bars]:
+    """The bars of each group."""
+    table, run = model.places.table, groups.run
+    strand = model.rows.strand[runs.row[run]]
+    bars, ys = model.bar[runs.row[groups.runs]].tolist(), runs.y[groups.runs].tolist()
     columns = (
-        order[first],
-        first,
-        stop,
-        np.maximum.reduceat(runs.start[order], first),
-        np.minimum.reduceat(runs.end[order], first),
-        np.add.reduceat(height[order], first) / (stop - first),
+        *(groups.first, groups.stop, groups.start, groups.end, groups.z),
+        *(model.places.size[strand], model.places.grade[strand]),
+        *(runs.start_hook[run], runs.end_hook[run]),
     )
-    bars, ys = model.bar[runs.row[order]].tolist(), runs.y[order].tolist()
-    for run, a, b, start, end, z in zip(*(column.tolist() for column in columns), strict=True):
-        yield run, _bars(model, runs, run, bars[a:b], tuple(ys[a:b]), start, end, z)
-
-
-def _bars(
-    model: Measured,
-    runs: Runs,
-    run: int,
-    bars: Sequence[int],
-    ys: tuple[float, ...],
-    start: float,
-    end: float,
-    z: float,
-) -> Bars:
-    row = int(runs.row[run])
-    size = model.size(row)
-    return Bars(
-        count=len(bars),
-        diameter=size.diameter,
-        area=size.area,
-        start=start,
-        end=end,
-        z=z,
-        ys=ys,
-        yield_strength=model.strength(row),
-        start_anchor=Anchor.HOOK if runs.start_hook[run] else Anchor.STRAIGHT,
-        end_anchor=Anchor.HOOK if runs.end_hook[run] else Anchor.STRAIGHT,
-        designation=size.designation,
-        origin=model.names(bars),
-    )
+    listed = zip(*(column.tolist() for column in columns), strict=True)
+    for a, b, start, end, z, number, grade, start_hook, end_hook in listed:
+        size = table.sizes[number]
+        yield Bars(
+            count=b - a,
+            diameter=size.diameter,
+            area=size.area,
+            start=start,
+            end=end,
+            z=z,
+            ys=tuple(ys[a:b]),
+            yield_strength=table.grades[grade].strength,
+            start_anchor=Anchor.HOOK if start_hook else Anchor.STRAIGHT,
+            end_anchor=Anchor.HOOK if end_hook else Anchor.STRAIGHT,
+            designation=size.designation,
+            origin=model.names(bars[a:b]),
+        )

@@ -5,7 +5,6 @@ from __future__ import annotations
 from dataclasses import dataclass
 
 import numpy as np
-import numpy.typing as npt
 
 from ifccheck.ifc.bar_hosts import BarHosts, Tie
 from ifccheck.ifc.bar_paths import Bools, Floats, Ints
@@ -13,6 +12,7 @@ from ifccheck.ifc.bar_pieces import CentreLines, cut_into_pieces, place
 from ifccheck.ifc.bar_samples import Samples, offsets, sample, spread
 from ifccheck.ifc.bar_table import BarTable
 from ifccheck.ifc.beam_frames import BeamFrames, part_inside
+from ifccheck.ifc.equal_rows import first_of_each
 
 INSIDE_TOLERANCE = 5.0
 """A bar may lie outside the box of its beam by this [mm] and still lie in it."""
@@ -102,7 +102,7 @@ class BarPlaces:
             self.diameter[rows.strand] * PLACE_STEPS,
         )
         key = np.column_stack([np.rint(column).astype(np.int64) for column in columns])
-        first, inverse = _first_of_each(key)
+        first, inverse = first_of_each(key)
         stands_for = first[inverse]
         return stands_for, translation[:, 0] - translation[stands_for, 0]
 
@@ -115,16 +115,6 @@ class BarPlaces:
             self.table.translation[strands],
             self.diameter[strands],
         )
-
-
-def _first_of_each(key: npt.NDArray[np.int64]) -> tuple[Ints, Ints]:
-    """First row of each distinct row of integers, and which of them every row is."""
-    mixer = np.random.default_rng(1).integers(1, 2**62, key.shape[1]) * 2 + 1
-    mixed = (key * mixer).sum(axis=1)  # wraps round: a hash that sorts a hundred times as fast
-    _, first, inverse = np.unique(mixed, return_index=True, return_inverse=True)
-    if not (key == key[first[inverse]]).all():
-        _, first, inverse = np.unique(key, axis=0, return_index=True, return_inverse=True)
-    return first, inverse.reshape(-1)
 
 
 def find_rows(places: BarPlaces, hosts: BarHosts) -> Found:

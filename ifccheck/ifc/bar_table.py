@@ -28,7 +28,11 @@ class BarTable:
     product: Ints
     """Which of the products that were asked for each bar is."""
     step_ids: Ints
+    name: Ints
+    """Index into ``names``."""
     names: Sequence[str]
+    role: Ints
+    """Index into ``roles``."""
     roles: Sequence[str]
     """LIGATURE, MAIN ..., of the occurrence or else of its type; "" where neither tells."""
     size: Ints
@@ -50,8 +54,17 @@ class BarTable:
 
     def label(self, bar: int) -> str:
         """What people call a bar."""
-        name, step_id = self.names[bar], self.step_ids.item(bar)
-        return f"{name} #{step_id}" if name else f"#{step_id}"
+        return _label(self.names[self.name.item(bar)], self.step_ids.item(bar))
+
+    def labels(self, bars: Ints) -> list[str]:
+        """What people call some bars."""
+        names = map(self.names.__getitem__, self.name[bars].tolist())
+        step_ids = self.step_ids[bars].tolist()
+        return [_label(name, step_id) for name, step_id in zip(names, step_ids, strict=True)]
+
+
+def _label(name: str, step_id: int) -> str:
+    return f"{name} #{step_id}" if name else f"#{step_id}"
 
 
 def gather_bars(context: Context, bars: Ints, statements: StepTable | None = None) -> BarTable:
@@ -95,12 +108,14 @@ def _table(readers: BarReaders, bars: Ints, found: Gathered) -> BarTable:
     rotation, translation = _motions(readers, columns)
     size = np.array([data.size for data in columns.data], dtype=np.intp)
     grade = np.array([data.grade for data in columns.data], dtype=np.intp)
-    size, sizes = _by_appearance(size, readers.data.sizes)
-    grade, grades = _by_appearance(grade, readers.data.grades)
+    size, sizes = _by_appearance(size[columns.datum], readers.data.sizes)
+    grade, grades = _by_appearance(grade[columns.datum], readers.data.grades)
     return BarTable(
         product=columns.product,
         step_ids=bars[columns.product],
+        name=columns.name,
         names=columns.names,
+        role=columns.datum,
         roles=[data.role for data in columns.data],
         size=size,
         grade=grade,

@@ -3,22 +3,42 @@
 from __future__ import annotations
 
 import re
-from collections.abc import Sequence
 from dataclasses import dataclass
-from functools import lru_cache
 
 import numpy as np
 
 from ifccheck.ifc.bar_paths import Bools, Ints
+from ifccheck.ifc.equal_rows import first_of_each_text
 from ifccheck.ifc.step_cursors import Bytes, Cursors
-from ifccheck.ifc.step_table import StepTable
+from ifccheck.ifc.step_table import Rests, StepTable
 
 ARGUMENTS = 14
 NAME, OBJECT_TYPE, PLACEMENT, SHAPE, TAG, GRADE, AREA, ROLE = 2, 4, 5, 6, 7, 8, 10, 12
 """Places of the arguments of a bar, the same in all schemas."""
+QUOTE, OPEN, CLOSE, COMMA, SEMICOLON = b"'(),;"
+"""Signs that tell where an argument ends; the first three follow one another in ASCII."""
 _VALUE = rb"(?:'[();]*'|\(\))?"
 _PLAIN = re.compile(_VALUE + rb"(?:," + _VALUE + rb"){%d}\);" % (ARGUMENTS - 1))
-_NOT_STRUCTURE = bytes(byte for byte in range(256) if byte not in b"'(),;")
+
+
+@dataclass(frozen=True, slots=True)
+class Column:
+    """The text of one argument of many bars, or of some one after another (P)."""
+
+    text: bytes
+    start: Ints
+    stop: Ints
+
+    def __getitem__(self, row: int) -> bytes:
+        return self.text[self.start[row] : self.stop[row]]
+
+    def take(self, kept: Ints) -> Column:
+        """That of some of the bars."""
+        return Column(self.text, self.start[kept], self.stop[kept])
+
+    def first_of_each(self) -> tuple[Ints, Ints]:
+        """First bar of each distinct text, and which of the texts that of each bar is."""
+        return first_of_each_text(np.frombuffer(self.text, np.uint8), self.start, self.stop)
 
 
 @dataclass(frozen=True, slots=True)
@@ -27,9 +47,9 @@ class BarTexts:
 
     place: Ints
     """Which of the bars asked for each is."""
-    name: Sequence[bytes]
-    tag: Sequence[bytes]
-    data: Sequence[tuple[bytes, ...]]
+    name: Column
+    tag: Column
+    data: tuple[Column, ...]
     """All that tells size, grade and role."""
     placement: Ints
     """STEP id; 0 for none."""
@@ -39,38 +59,43 @@ class BarTexts:
         """Some of the bars."""
         if len(kept) == len(self.place):
             return self
-        name, tag, data = (
-            [c[at] for at in kept.tolist()] for c in (self.name, self.tag, self.data)
-        )
-        return BarTexts(self.place[kept], name, tag, data, self.placement[kept], self.shape[kept])
+        name, tag, data = self.name.take(kept), self.tag.take(kept), self.data
+        said = tuple(column.take(kept) for column in data)
+        return BarTexts(self.place[kept], name, tag, said, self.placement[kept], self.shape[kept])
 
 
 def read_bar_texts(table: StepTable, bars: Ints) -> BarTexts:
     """Split the statements of bars by their STEP ids; those with commas in texts are left out."""
     cursors = table.cursors(bars, "IFCREINFORCINGBAR")
-    rests = table.rest(cursors, bars)
-    plain: Bools = np.array(
-        [_is_plain(rest.translate(None, _NOT_STRUCTURE)) for rest in rests], dtype=bool
-    )
-    place = np.flatnonzero(plain)
-    text = b"".join(rests if len(place) == len(rests) else [rests[at] for at in place.tolist()])
-    data = np.frombuffer(text, np.uint8)
-    commas = np.flatnonzero(data == ord(",")).reshape(-1, ARGUMENTS - 1)
-    said, role = _between(text, commas, GRADE, AREA), _between(text, commas, ROLE, ROLE)
+    rests = table.rests(cursors, bars)
+    place, commas = _commas(rests)
+
+    def between(first: int, last: int) -> Column:
+        """From one argument to another."""
+        return Column(rests.text, commas[:, first - 1] + 1, commas[:, last])
+
     return BarTexts(
         place=place,
-        name=_between(text, commas, NAME, NAME),
-        tag=_between(text, commas, TAG, TAG),
-        data=list(zip(_between(text, commas, OBJECT_TYPE, OBJECT_TYPE), said, role, strict=True)),
-        placement=_references(data, commas, PLACEMENT),
-        shape=_references(data, commas, SHAPE),
+        name=between(NAME, NAME),
+        tag=between(TAG, TAG),
+        data=(between(OBJECT_TYPE, OBJECT_TYPE), between(GRADE, AREA), between(ROLE, ROLE)),
+        placement=_references(rests.data, commas, PLACEMENT),
+        shape=_references(rests.data, commas, SHAPE),
     )
 
 
-def _between(text: bytes, commas: Ints, first: int, last: int) -> list[bytes]:
-    """The text of each bar from one of its arguments to another."""
-    bounds = zip((commas[:, first - 1] + 1).tolist(), commas[:, last].tolist(), strict=True)
-    return [text[start:stop] for start, stop in bounds]
+def _commas(rests: Rests) -> tuple[Ints, Ints]:
+    """Which statements are plain, and where the commas between their arguments stand."""
+    data = rests.data
+    signs = np.flatnonzero((data - QUOTE <= 2) | (data == COMMA) | (data == SEMICOLON))
+    structure = data[signs]
+    bounds = np.searchsorted(signs, rests.first)
+    first, number = first_of_each_text(structure, bounds[:-1], bounds[1:])
+    kinds = [structure[bounds[row] : bounds[row + 1]].tobytes() for row in first.tolist()]
+    plain: Bools = np.array([_PLAIN.fullmatch(kind) is not None for kind in kinds], dtype=bool)
+    of_plain = np.repeat(plain[number], np.diff(bounds))
+    commas = signs[of_plain & (structure == COMMA)]
+    return np.flatnonzero(plain[number]), commas.reshape(-1, ARGUMENTS - 1)
 
 
 def _references(data: Bytes, commas: Ints, place: int) -> Ints:
@@ -79,9 +104,3 @@ def _references(data: Bytes, commas: Ints, place: int) -> Ints:
     references = cursors.reference()
     cursors.tokens(b",")
     return np.where(cursors.plain, references, 0)
-
-
-@lru_cache(maxsize=4096)
-def _is_plain(structure: bytes) -> bool:
-    """Whether commas, brackets and apostrophes are those of a bar, with no comma in a text."""
-    return _PLAIN.fullmatch(structure) is not None

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable
+from collections.abc import Iterable, Iterator, Sequence
 from dataclasses import dataclass
 
 import numpy as np
@@ -54,15 +54,35 @@ class Measured:
         grades = self.places.table.grades
         return np.array([g.strength.value if g.strength else USUAL_YIELD for g in grades])
 
-    def remark(self, rows: Iterable[int], text: str) -> None:
+    def remark(self, rows: Ints, text: str) -> None:
         """Say something of the bars of rows."""
-        for row in rows:
-            self.findings.remark(int(self.rows.beam[row]), text, (self.label(row),))
+        self.remark_each(rows, np.zeros(len(rows), dtype=np.intp), (text,))
 
-    def reason(self, rows: Iterable[int], text: str) -> None:
+    def remark_each(self, rows: Ints, number: Ints, texts: Sequence[str]) -> None:
+        """Say of the bar of each row the text that it has the number of; "" is not said."""
+        told = np.array([bool(text) for text in texts], dtype=bool)[number]
+        for beam, one, labels in self._by_beam(rows[told], number[told]):
+            self.findings.remark(beam, texts[one], labels)
+
+    def reason(self, rows: Ints, text: str) -> None:
         """Say why the bars of rows keep their beams from being rated."""
-        for row in rows:
-            self.findings.reason(int(self.rows.beam[row]), text, (self.label(row),))
+        for beam, _, labels in self._by_beam(rows, np.zeros(len(rows), dtype=np.intp)):
+            self.findings.reason(beam, text, labels)
+
+    def _by_beam(self, rows: Ints, number: Ints) -> Iterator[tuple[int, int, list[str]]]:
+        """Labels of the bars of rows, together for each beam and number, in the order of the
+        first row of each."""
+        beam = self.rows.beam[rows]
+        order = np.lexsort((number, beam))
+        begins = np.ones(len(order), dtype=bool)
+        begins[1:] = (np.diff(beam[order]) != 0) | (np.diff(number[order]) != 0)
+        first = np.flatnonzero(begins)
+        stop = np.append(first[1:], len(order))
+        labels = self.places.table.labels(self.bar[rows[order]])
+        in_turn = np.argsort(order[first])
+        columns = (beam[order[first]], number[order[first]], first, stop)
+        for at, one, a, b in zip(*(c[in_turn].tolist() for c in columns), strict=True):
+            yield at, one, labels[a:b]
 
 
 def measure(places: BarPlaces, rows: Rows, findings: Findings) -> Measured:

@@ -14,6 +14,7 @@ from ifccheck.ifc.bar_outlines import FIT_TOLERANCE, legs_outside, runs_outside
 from ifccheck.ifc.bar_paths import Bools, Floats, Ints
 from ifccheck.ifc.bar_pieces import count_by_row
 from ifccheck.ifc.bar_rows import BarPlaces, Rows
+from ifccheck.ifc.bar_sizes import BarSize
 from ifccheck.ifc.bars import ALONG, LEAST_RUN, LONGEST_CHORD, Runs, find_runs
 from ifccheck.ifc.measured import Measured, measure
 from ifccheck.ifc.stirrup_legs import Legs
@@ -70,7 +71,7 @@ def _along(model: Measured) -> dict[int, tuple[Bars, ...]]:
     is_main[runs.row] = True
     _judge_others(model, is_main)
     _judge_roles(model, is_main, TIE_ROLES, "a stirrup by its role, but runs along the beam")
-    model.reason(np.flatnonzero(_run_outside(model, runs)).tolist(), OUTSIDE)
+    model.reason(np.flatnonzero(_run_outside(model, runs)), OUTSIDE)
     _judge_data(model, is_main)
     return longitudinal_bars(model, runs)
 
@@ -95,7 +96,7 @@ def _across(
     ties = replace(ties, x=ties.x + tied.shift)
     model = replace(model, rows=tied.rows, bar=places.table.bar[tied.rows.strand])
     counted = _judge_legs(model, ties)
-    model.reason(np.flatnonzero(outside & counted).tolist(), OUTSIDE)
+    model.reason(np.flatnonzero(outside & counted), OUTSIDE)
     _judge_data(model, counted)
     return stirrups_by_zone(model, ties.take(counted), legs, bars)
 
@@ -105,9 +106,9 @@ def _judge_legs(model: Measured, ties: Ties) -> Bools:
     length = model.places.frames.length[model.rows.beam]
     beyond = (ties.x < -END_TOLERANCE) | (ties.x > length + END_TOLERANCE)
     counted = (ties.legs[:, 1] > 0) & ~beyond
-    model.remark(np.flatnonzero(beyond).tolist(), "lies beyond the end of the beam, not counted")
+    model.remark(np.flatnonzero(beyond), "lies beyond the end of the beam, not counted")
     flat = ~beyond & ~counted
-    model.remark(np.flatnonzero(flat).tolist(), "no leg crosses the height, not counted in shear")
+    model.remark(np.flatnonzero(flat), "no leg crosses the height, not counted in shear")
     _judge_roles(model, counted, MAIN_ROLES, "a main bar by its role, but lies square to the beam")
     return np.asarray(counted)
 
@@ -127,26 +128,25 @@ def _judge_others(model: Measured, is_main: Bools) -> None:
     long = pieces.straight & (pieces.length > LONGEST_CHORD * thick)
     inclined = long & (slope < ALONG) & (slope > np.sqrt(1.0 - ALONG**2))
     bent_up = count_by_row(pieces.row, inclined & is_main[pieces.row], rows) > 0
-    model.remark(np.flatnonzero(bent_up).tolist(), "inclined parts are not counted")
+    model.remark(np.flatnonzero(bent_up), "inclined parts are not counted")
     other = ~is_main
     lengths = np.bincount(pieces.row, pieces.length, rows)
     short = other & (lengths <= LEAST_RUN * model.lines.diameter)
     skewed = long & (slope >= SKEWED) & (pieces.length > LEAST_RUN * thick)
     straight = count_by_row(pieces.row, long, rows) > 0
     unread = other & ~short & ((count_by_row(pieces.row, skewed, rows) > 0) | ~straight)
-    model.remark(np.flatnonzero(short).tolist(), "too short to count along the beam")
-    model.reason(
-        np.flatnonzero(unread).tolist(), "runs neither along the beam nor square to it: not read"
-    )
+    model.remark(np.flatnonzero(short), "too short to count along the beam")
+    model.reason(np.flatnonzero(unread), "runs neither along the beam nor square to it: not read")
     left = other & ~short & ~unread
-    model.remark(np.flatnonzero(left).tolist(), "inclined, not counted")
+    model.remark(np.flatnonzero(left), "inclined, not counted")
 
 
 def _judge_roles(model: Measured, mask: Bools, roles: frozenset[str], text: str) -> None:
     """Shape decides over role; where they contradict each other it is told."""
-    all_roles, bars = model.places.table.roles, model.bar.tolist()
-    contrary = [row for row in np.flatnonzero(mask).tolist() if all_roles[bars[row]] in roles]
-    model.remark(contrary, f"{text}: taken by its shape")
+    table = model.places.table
+    contrary = np.array([role in roles for role in table.roles], dtype=bool)
+    rows = np.flatnonzero(mask)
+    model.remark(rows[contrary[table.role[model.bar[rows]]]], f"{text}: taken by its shape")
 
 
 def _run_outside(model: Measured, runs: Runs) -> Bools:
@@ -175,13 +175,12 @@ def _outside(model: Measured, anywhere: bool = False) -> Bools:
 
 def _judge_data(model: Measured, used: Bools) -> None:
     """Tell where the sources of size and grade disagree or could not be read."""
-    table, strand = model.places.table, model.rows.strand
-    size_doubts = np.array([bool(size.doubt) for size in table.sizes], dtype=bool)
-    grade_doubts = np.array([bool(grade.doubt) for grade in table.grades], dtype=bool)
-    sizes, grades = model.places.size[strand], model.places.grade[strand]
-    for row in np.flatnonzero(used & size_doubts[sizes]).tolist():
-        size = table.sizes[int(sizes[row])]
-        taken = f"taken as {size.designation} of {size.area:.4g} mm2"
-        model.remark((row,), f"sizes differ ({size.doubt}): {taken}")
-    for row in np.flatnonzero(used & grade_doubts[grades]).tolist():
-        model.remark((row,), table.grades[int(grades[row])].doubt)
+    table, strand, rows = model.places.table, model.rows.strand, np.flatnonzero(used)
+    sizes, grades = model.places.size[strand[rows]], model.places.grade[strand[rows]]
+    model.remark_each(rows, sizes, [_size_doubt(size) for size in table.sizes])
+    model.remark_each(rows, grades, [grade.doubt for grade in table.grades])
+
+
+def _size_doubt(size: BarSize) -> str:
+    taken = f"taken as {size.designation} of {size.area:.4g} mm2"
+    return f"sizes differ ({size.doubt}): {taken}" if size.doubt else ""

@@ -7,7 +7,7 @@ text tells which bars say the same; one of these is read through its entity for 
 from __future__ import annotations
 
 import re
-from collections.abc import Callable, Collection, Hashable, Sequence
+from collections.abc import Callable, Collection, Sequence
 from dataclasses import dataclass
 from typing import Generic, TypeVar, cast
 
@@ -23,11 +23,12 @@ from ifccheck.ifc.bar_columns import (
     what_is_wrong,
 )
 from ifccheck.ifc.bar_data import Data
-from ifccheck.ifc.bar_paths import Bools, Ints
+from ifccheck.ifc.bar_paths import Bools, Floats, Ints
 from ifccheck.ifc.bar_samples import offsets, others, spread
 from ifccheck.ifc.bar_shapes import Strand
 from ifccheck.ifc.bar_texts import BarTexts, read_bar_texts
 from ifccheck.ifc.entity import ILL_TYPED, UnreadableError
+from ifccheck.ifc.equal_rows import first_of_each, renumbered
 from ifccheck.ifc.placements import IDENTITY
 from ifccheck.ifc.step_table import StepTable
 from ifccheck.ifc.swept_texts import read_swept_texts
@@ -50,18 +51,15 @@ class Shared(Generic[Value]):
     wrong: Sequence[str | None]
     """What keeps a value from being read."""
 
-    def of_rows(self, kept: Bools) -> list[Value]:
-        """The values of rows, each of which could be read."""
+    def of_rows(self, kept: Bools) -> tuple[Ints, list[Value]]:
+        """Which value rows have, and those values; each could be read."""
+        used, number = renumbered(self.number[kept], len(self.values))
         values = cast(Sequence[Value], self.values)
-        return [values[number] for number in self.number[kept].tolist()]
+        return number, [values[one] for one in used.tolist()]
 
 
-def shared(keys: Sequence[Hashable], read: Callable[[int], Value]) -> Shared[Value]:
-    """Read the value of each distinct key by its first row."""
-    numbers: dict[Hashable, int] = {}
-    number = np.array([numbers.setdefault(key, len(numbers)) for key in keys], dtype=np.intp)
-    first = np.zeros(len(numbers), dtype=np.intp)
-    first[number[::-1]] = np.arange(len(keys))[::-1]
+def shared(first: Ints, number: Ints, read: Callable[[int], Value]) -> Shared[Value]:
+    """Read each value by the first of the rows that share it."""
     read_or_not = [_tried(read, row) for row in first.tolist()]
     return Shared(number, [value for value, _ in read_or_not], [text for _, text in read_or_not])
 
@@ -83,7 +81,8 @@ class _Shapes:
     """Where the strands of each shape begin, and S at the end (D + 1)."""
     path: Ints
     inner: Ints
-    thickness: Sequence[float | None]
+    thickness: Floats
+    """nan where no strand has a diameter."""
     wrong: Sequence[str | None]
 
 
@@ -92,9 +91,9 @@ def read_plain_bars(readers: BarReaders, table: StepTable, bars: Ints) -> tuple[
     texts = read_bar_texts(table, bars)
     chains = follow_chains(table, texts.placement, texts.shape)
     texts = texts.take(chains.place)
-    step_ids = bars[texts.place].tolist()
+    step_ids = bars[texts.place]
     shapes = _read_shapes(readers, table, chains)
-    parents = shared(chains.parent.tolist(), lambda row: readers.parent(int(chains.parent[row])))
+    parents = _read_parents(readers, chains)
     names = _read_names(readers, step_ids, texts)
     data = _read_data(readers, step_ids, texts, names, shapes)
     wrong = _wrong((shapes, parents, names, data))
@@ -111,15 +110,15 @@ def _read_shapes(readers: BarReaders, table: StepTable, chains: Chains) -> _Shap
     swept = read_swept_texts(table, chains.item[row[solids]], scale)
     readers.swept_paths = swept.paths
     read = solids[swept.place]
-    thickness: list[float | None] = [None] * len(row)
-    for shape, diameter in zip(read.tolist(), swept.diameter.tolist(), strict=True):
-        thickness[shape] = diameter
+    thickness = np.full(len(row), np.nan)
+    thickness[read] = swept.diameter
     wrong: list[str | None] = [None] * len(row)
     strands: list[tuple[int, int, int]] = []
     for shape in others(len(row), read).tolist():
         found, wrong[shape] = _tried(lambda at: _strands(readers, chains, at), int(row[shape]))
         if found is not None:
-            thickness[shape] = thinnest(found)
+            thin = thinnest(found)
+            thickness[shape] = np.nan if thin is None else thin
             for strand in found:
                 inner = readers.inner.index(strand.matrix)
                 strands.append((shape, readers.path(strand), inner))
@@ -138,39 +137,53 @@ def _strands(readers: BarReaders, chains: Chains, row: int) -> tuple[Strand, ...
     return strands
 
 
-def _read_names(readers: BarReaders, step_ids: Sequence[int], texts: BarTexts) -> Shared[str]:
-    keys = [
-        (name, tag) if name.strip() in NAMELESS else name
-        for name, tag in zip(texts.name, texts.tag, strict=True)
-    ]
+def _read_parents(readers: BarReaders, chains: Chains) -> Shared[int]:
+    _, first, number = np.unique(chains.parent, return_index=True, return_inverse=True)
+    return shared(first, number, lambda row: readers.parent(int(chains.parent[row])))
+
+
+def _read_names(readers: BarReaders, step_ids: Ints, texts: BarTexts) -> Shared[str]:
+    first, number = texts.name.first_of_each()
+    nameless = np.array([texts.name[row].strip() in NAMELESS for row in first.tolist()], dtype=bool)
+    if nameless.any():
+        tag = np.where(nameless[number], texts.tag.first_of_each()[1], -1)
+        first, number = first_of_each(np.column_stack((number, tag)))
 
     def read(row: int) -> str:
         itself = _ITSELF.fullmatch(texts.name[row])
         if itself is not None:
             return itself[1].decode("ascii")
-        return name_of(readers.context.file.by_id(step_ids[row]))
+        return name_of(readers.context.file.by_id(int(step_ids[row])))
 
-    return shared(keys, read)
+    return shared(first, number, read)
 
 
 def _read_data(
     readers: BarReaders,
-    step_ids: Sequence[int],
+    step_ids: Ints,
     texts: BarTexts,
     names: Shared[str],
     shapes: _Shapes,
 ) -> Shared[Data]:
-    sizes = [readers.data.size_in(name or "") for name in names.values]
-    thickness = [shapes.thickness[shape] for shape in shapes.number.tolist()]
-    of_rows = names.number.tolist()
-    related = readers.data.all_related(step_ids)
-    keys = list(zip(texts.data, [sizes[n] for n in of_rows], related, thickness, strict=True))
+    sizes: dict[str, int] = {}
+    size_of = [
+        sizes.setdefault(readers.data.size_in(name or ""), len(sizes)) for name in names.values
+    ]
+    thickness = shapes.thickness[shapes.number]
+    said = [column.first_of_each()[1] for column in texts.data]
+    size = np.array(size_of, dtype=np.intp)[names.number]
+    related = readers.data.relations_of(step_ids)
+    first, number = first_of_each(
+        np.column_stack((*said, size, *related, thickness.view(np.int64)))
+    )
 
     def read(row: int) -> Data:
-        product = readers.context.file.by_id(step_ids[row])
-        return readers.settled(product, names.values[of_rows[row]] or "", thickness[row])
+        product = readers.context.file.by_id(int(step_ids[row]))
+        swept = float(thickness[row])
+        name = names.values[int(names.number[row])] or ""
+        return readers.settled(product, name, None if np.isnan(swept) else swept)
 
-    return shared(keys, read)
+    return shared(first, number, read)
 
 
 def _wrong(parts: Sequence[_Shapes | Shared[int] | Shared[str] | Shared[Data]]) -> dict[int, str]:
@@ -196,11 +209,16 @@ def _columns(
     number = shapes.number[kept]
     bar, within = spread(np.diff(shapes.first)[number])
     strand = shapes.first[number[bar]] + within
+    parent, outers = parents.of_rows(kept)
+    name, all_names = names.of_rows(kept)
+    datum, all_data = data.of_rows(kept)
     return BarColumns(
         product=place[kept],
-        names=names.of_rows(kept),
-        data=data.of_rows(kept),
-        outer=np.array(parents.of_rows(kept), dtype=np.intp),
+        name=name,
+        names=all_names,
+        datum=datum,
+        data=all_data,
+        outer=np.array(outers, dtype=np.intp)[parent],
         move=chains.move[kept],
         bar=bar,
         path=shapes.path[strand],

@@ -14,7 +14,8 @@ from ifccheck.ifc.bar_paths import Bools, Floats, Ints
 Bytes = npt.NDArray[np.uint8]
 
 _ZERO, _POINT, _MINUS, _PLUS, _EXPONENT, _HASH, _QUOTE, _NOTHING = b"0.-+E#'$"
-_IS_BLANK = np.isin(np.arange(256), np.frombuffer(b" \t\r\n", np.uint8))
+BLANKS = b" \t\r\n"
+IS_BLANK = np.isin(np.arange(256), np.frombuffer(BLANKS, np.uint8))
 MOST_DIGITS, MOST_WHOLE_DIGITS = 30, 18
 """Longer rows of digits, and longer whole numbers, are left to a reader that takes its time."""
 EXACT_DIGITS, EXACT_POWER = 15, 22
@@ -75,10 +76,10 @@ class Cursors:
         self.at = np.where(self.plain & nothing, self.at - 1, self.at)
 
     def _skip_blanks(self) -> None:
-        blank = _IS_BLANK[self._data.take(self.at, mode="clip")] & self.plain
+        blank = IS_BLANK[self._data.take(self.at, mode="clip")] & self.plain
         while blank.any():
             self.at = self.at + blank
-            blank &= _IS_BLANK[self._data.take(self.at, mode="clip")]
+            blank &= IS_BLANK[self._data.take(self.at, mode="clip")]
 
     def _stands_here(self, text: bytes) -> Bools:
         found = self._begins_with(text)

@@ -12,13 +12,18 @@ from collections.abc import Iterator, Sequence
 import numpy as np
 
 from ifccheck.ifc.bar_paths import Ints
+from ifccheck.ifc.equal_rows import first_of_each_text
 from ifccheck.ifc.lexer import Offsets, Scan
-from ifccheck.ifc.step_cursors import Cursors
+from ifccheck.ifc.step_cursors import BLANKS, IS_BLANK, Cursors
 
 _POWERS_OF_TEN = 10 ** np.arange(10)
 _HIDDEN_QUOTE = re.compile(rb"\\S\\'")
 SPARSE = 8
 """Numbers of statements are looked up in a table where it is not this many times as long."""
+
+
+_MARGIN = bytes(64)
+"""Behind the text of several statements, so that it is never empty and seldom read beyond."""
 
 
 class StepTable:
@@ -91,6 +96,39 @@ class StepTable:
         stops = np.where(cursors.plain, self._stops[self.rows(ids)], cursors.at)
         bounds = zip(cursors.at.tolist(), stops.tolist(), strict=True)
         return [self._data[start:stop] for start, stop in bounds]
+
+    def rests(self, cursors: Cursors, ids: Ints) -> Rests:
+        """The same in one text."""
+        return Rests(self.rest(cursors, ids))
+
+
+class Rests:
+    """What is left of statements, one after another in one text (N)."""
+
+    def __init__(self, texts: Sequence[bytes]) -> None:
+        self.text = b"".join((*texts, _MARGIN))
+        self.data = np.frombuffer(self.text, np.uint8)
+        counts = np.fromiter(map(len, texts), dtype=np.intp, count=len(texts))
+        self.first: Ints = np.concatenate(([0], np.cumsum(counts))).astype(np.intp)
+        """Where each begins, and where the last ends (N + 1)."""
+
+    def without_blanks(self) -> Rests:
+        """The same without blanks and line breaks, those within texts included."""
+        text = self.text.translate(None, BLANKS)
+        if len(text) == len(self.text):
+            return self
+        kept = np.concatenate(([0], np.cumsum(~IS_BLANK[self.data])))
+        found = Rests((text,))
+        found.first = kept[self.first]
+        return found
+
+    def of(self, row: int) -> bytes:
+        """One of them."""
+        return self.text[self.first[row] : self.first[row + 1]]
+
+    def first_of_each(self) -> tuple[Ints, Ints]:
+        """First of each distinct one, and which of these every one is."""
+        return first_of_each_text(self.data, self.first[:-1], self.first[1:])
 
 
 def make_step_table(data: bytes, scan: Scan) -> StepTable | None:

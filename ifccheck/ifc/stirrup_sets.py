@@ -4,13 +4,14 @@ from __future__ import annotations
 
 import math
 from collections.abc import Iterator, Sequence
-from dataclasses import dataclass, replace
+from dataclasses import dataclass
 
 import numpy as np
 
 from ifccheck.ifc.bar_paths import Bools, Floats, Ints
 from ifccheck.ifc.bar_pieces import CentreLines, Pieces, count_by_row
 from ifccheck.ifc.bar_samples import offsets, spread
+from ifccheck.ifc.equal_rows import first_of_each
 from ifccheck.ifc.stirrup_legs import Legs, find_legs
 
 SQUARE_DIAMETERS, SQUARE_SLOPE = 3.0, 0.1
@@ -152,11 +153,6 @@ class Places:
     first_tie: Ints
     """Where the ties of each place begin, and their number at the end (P + 1)."""
 
-    def ties_of(self, place: int) -> list[int]:
-        """The ties of a place."""
-        found: list[int] = self.ties[self.first_tie[place] : self.first_tie[place + 1]].tolist()
-        return found
-
     def take(self, kept: Ints) -> Places:
         """Some of the places, in order."""
         if len(kept) == len(self.x):
@@ -182,27 +178,19 @@ class Places:
         """A number for each place, the same where legs, area, steel and form are the same."""
         area = np.rint(np.log(np.maximum(self.area, 1e-3)) / SAME_STEEL).astype(np.intp)
         key = np.stack([self.legs, area, self.grade, self.closed.astype(np.intp)], axis=1)
-        return np.unique(key, axis=0, return_inverse=True)[1].reshape(-1)
+        return first_of_each(key)[1]
 
 
 @dataclass(frozen=True, slots=True)
-class Zone:
-    """A stretch of a beam with stirrups at one spacing."""
+class Zones:
+    """Stretches of beams with stirrups at one spacing (Z)."""
 
-    start: float
-    end: float
-    spacing: float
-    first: int
-    """The places that bound its gaps, the last included."""
-    last: int
-
-    def between(self, start: float, end: float) -> Zone:
-        """The same zone with other ends."""
-        return Zone(start, end, self.spacing, self.first, self.last)
-
-    def shifted(self, places: int) -> Zone:
-        """The same zone where other places stand before."""
-        return Zone(self.start, self.end, self.spacing, self.first + places, self.last + places)
+    start: Floats
+    end: Floats
+    spacing: Floats
+    first: Ints
+    """The places that bound the gaps of each, the last included."""
+    last: Ints
 
 
 def gather_places(
@@ -245,52 +233,70 @@ def same_place(ties: Ties, beam: Ints, diameter: Floats) -> Ints:
     return place
 
 
-def zones_of_one_spacing(
-    xs: Sequence[float], areas: Sequence[float], steel: Sequence[int], length: float
-) -> list[Zone]:
-    """Divide sorted stirrups into zones of one spacing along a beam of that length [mm].
+def zones_of_one_spacing(beam: Ints, x: Floats, area: Floats, steel: Ints, length: Floats) -> Zones:
+    """Divide stirrups, sorted by beam and x, into zones of one spacing; each with the length of
+    its beam [mm] (P).
 
     Consecutive gaps within 5 % make a zone with the greatest as its spacing; a gap that differs
     starts another, and so does other steel. Each gap has the lesser steel of its two ends. A
     single gap that is closer than its neighbours does not make a closer zone. A zone reaches to
     the beam's end where its last stirrup is within a spacing of it, else half a spacing further.
     """
-    if len(xs) < 2:
-        return []
-    zones = _without_lone_close_gaps(list(_joined(xs, areas, steel)))
-    first, last = zones[0], zones[-1]
-    zones[0] = first.between(_reach(first.start, first.spacing, 0.0, -1.0), first.end)
-    zones[-1] = zones[-1].between(zones[-1].start, _reach(last.end, last.spacing, length, 1.0))
-    return zones
+    before = np.flatnonzero(beam[1:] == beam[:-1])
+    gap = x[before + 1] - x[before]
+    lesser = np.where(area[before] <= area[before + 1], steel[before], steel[before + 1])
+    first = np.flatnonzero(_begins(gap, lesser, beam[before]))
+    if not len(first):
+        nothing = np.zeros(0, dtype=np.intp)
+        return Zones(np.zeros(0), np.zeros(0), np.zeros(0), nothing, nothing)
+    bounds = before[first], before[np.append(first[1:], len(gap)) - 1] + 1
+    is_first = np.diff(beam[bounds[0]], prepend=-1) != 0
+    is_last = np.append(is_first[1:], True)
+    single = bounds[1] == bounds[0] + 1
+    widest = np.maximum.reduceat(gap, first)
+    spacing = _without_lone_close_gaps(widest, single, is_first, is_last)
+    start, end, to_end = x[bounds[0]], x[bounds[1]], length[bounds[1]]
+    near, far = np.where(start <= spacing, 0.0, start - spacing / 2.0), end + spacing / 2.0
+    return Zones(
+        start=np.where(is_first, near, start),
+        end=np.where(is_last, np.where(to_end - end <= spacing, to_end, far), end),
+        spacing=spacing,
+        first=bounds[0],
+        last=bounds[1],
+    )
 
 
-def _reach(x: float, spacing: float, end: float, sign: float) -> float:
-    return end if (end - x) * sign <= spacing else x + sign * spacing / 2.0
+def _begins(gap: Floats, steel: Ints, beam: Ints) -> Bools:
+    """Whether each gap begins a zone: other steel, or another spacing than all before it."""
+    begins = np.ones(len(gap), dtype=bool)
+    wide, close = np.maximum(gap[1:], gap[:-1]), np.minimum(gap[1:], gap[:-1])
+    begins[1:] = (steel[1:] != steel[:-1]) | (beam[1:] != beam[:-1])
+    begins[1:] |= wide > SAME_SPACING * close
+    first = np.flatnonzero(begins)
+    if not len(first):
+        return begins
+    stop = np.append(first[1:], len(gap))
+    drifts = np.maximum.reduceat(gap, first) > SAME_SPACING * np.minimum.reduceat(gap, first)
+    for a, b in zip(first[drifts].tolist(), stop[drifts].tolist(), strict=True):
+        begins[[a + place for place in _breaks(gap[a:b].tolist())]] = True
+    return begins
 
 
-def _joined(xs: Sequence[float], areas: Sequence[float], steel: Sequence[int]) -> Iterator[Zone]:
-    """Join consecutive gaps of one spacing and the same steel."""
-    begin, wide, close, held = 0, 0.0, 0.0, -1
-    for index in range(len(xs) - 1):
-        gap = xs[index + 1] - xs[index]
-        lesser = steel[index] if areas[index] <= areas[index + 1] else steel[index + 1]
-        widest, closest = (gap if gap > wide else wide), (gap if gap < close else close)
-        if index and lesser == held and widest <= SAME_SPACING * closest:
-            wide, close = widest, closest
-            continue
-        if index:
-            yield Zone(xs[begin], xs[index], wide, begin, index)
-        begin, wide, close, held = index, gap, gap, lesser
-    yield Zone(xs[begin], xs[-1], wide, begin, len(xs) - 1)
+def _breaks(gaps: Sequence[float]) -> Iterator[int]:
+    """Where gaps that change little by little are no longer within 5 %."""
+    wide = close = gaps[0]
+    for place, gap in enumerate(gaps):
+        wide, close = max(wide, gap), min(close, gap)
+        if wide > SAME_SPACING * close:
+            yield place
+            wide = close = gap
 
 
-def _without_lone_close_gaps(zones: list[Zone]) -> list[Zone]:
-    """Give a zone of one gap that is closer than all its neighbours their least spacing."""
-    if len(zones) == 1:
-        return zones
-    settled = []
-    for index, zone in enumerate(zones):
-        beside = [z.spacing for z in zones[max(index - 1, 0) : index + 2] if z is not zone]
-        lone = zone.last == zone.first + 1 and beside and zone.spacing < min(beside)
-        settled.append(replace(zone, spacing=min(beside)) if lone else zone)
-    return settled
+def _without_lone_close_gaps(
+    spacing: Floats, single: Bools, is_first: Bools, is_last: Bools
+) -> Floats:
+    """Give zones of one gap that is closer than all its neighbours their least spacing."""
+    before, after = np.append(np.inf, spacing[:-1]), np.append(spacing[1:], np.inf)
+    beside = np.minimum(np.where(is_first, np.inf, before), np.where(is_last, np.inf, after))
+    lone = single & np.isfinite(beside) & (spacing < beside)
+    return np.where(lone, beside, spacing)

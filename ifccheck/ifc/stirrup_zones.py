@@ -9,6 +9,7 @@ import numpy as np
 
 from ifccheck.beam import Bars, Given, Stirrups
 from ifccheck.ifc.bar_paths import Bools, Floats, Ints
+from ifccheck.ifc.bar_samples import spread
 from ifccheck.ifc.measured import Measured
 from ifccheck.ifc.stirrup_legs import (
     Extents,
@@ -21,7 +22,7 @@ from ifccheck.ifc.stirrup_legs import (
 from ifccheck.ifc.stirrup_sets import (
     Places,
     Ties,
-    Zone,
+    Zones,
     gather_places,
     same_place,
     zones_of_one_spacing,
@@ -50,9 +51,12 @@ def stirrups_by_zone(
     _tell_left_out(model, places, served.legs.min(axis=1) > 0, legged.row, reaches)
     found: dict[int, list[Stirrups]] = {beam: [] for beam in np.unique(places.beam).tolist()}
     whole = places.take(np.flatnonzero(places.legs > 0))
-    zones = list(_zones(model, whole))
-    for zone, stirrups in zip(zones, _all_stirrups(model, whole, zones), strict=True):
-        found[int(whole.beam[zone.first])].append(stirrups)
+    _tell_lonely(model, whole)
+    length = model.places.frames.length[whole.beam]
+    zones = zones_of_one_spacing(whole.beam, whole.x, whole.area, whole.steel(), length)
+    beams = whole.beam[zones.first].tolist()
+    for beam, stirrups in zip(beams, _all_stirrups(model, whole, zones), strict=True):
+        found[beam].append(stirrups)
     return {beam: tuple(stirrups) for beam, stirrups in found.items()}
 
 
@@ -90,8 +94,8 @@ def _served(
     doubled = legs_in_one_another(legs, standing)
     counts = ties.legs.copy()
     counts[looked] -= doubled.counts
-    for pair in looked[doubled.pairs].tolist():
-        model.remark(ties.row[pair].tolist(), TWICE)
+    for pair in looked[doubled.pairs]:
+        model.remark(ties.row[pair], TWICE)
     left_out = np.where(serves, counts, 0).max(axis=1) == 0
     left_out &= np.where(serves, ties.legs, 0).max(axis=1) > 0
     return replace(ties, legs=np.where(serves, counts, 0)), np.flatnonzero(~left_out)
@@ -115,25 +119,17 @@ def _tell_left_out(
     of_place = np.repeat(np.arange(len(places.x)), np.diff(places.first_tie))
     has_whole = np.bincount(of_place, counts[places.ties], len(places.x)) > 0
     silent = short[places.ties] & (has_whole | (places.legs == 0))[of_place]
-    model.remark(places.ties[silent].tolist(), SHORT)
+    model.remark(places.ties[silent], SHORT)
     dead = (places.legs == 0)[of_place] & ~short[places.ties]
-    model.remark(places.ties[dead].tolist(), PARTIAL)
+    model.remark(places.ties[dead], PARTIAL)
 
 
-def _zones(model: Measured, places: Places) -> Iterator[Zone]:
-    """The zones of all beams, with their places counted through."""
-    if not len(places.x):
-        return
-    lengths = model.places.frames.length
-    first = np.flatnonzero(np.diff(places.beam, prepend=-1))
-    stop = np.append(first[1:], len(places.x))
-    columns = (first, stop, lengths[places.beam[first]])
-    xs, areas, steel = places.x.tolist(), places.area.tolist(), places.steel().tolist()
-    for a, b, length in zip(*(column.tolist() for column in columns), strict=True):
-        if b - a == 1:
-            model.remark(places.ties_of(a), LONELY)
-        for zone in zones_of_one_spacing(xs[a:b], areas[a:b], steel[a:b], length):
-            yield zone.shifted(a)
+def _tell_lonely(model: Measured, places: Places) -> None:
+    """Tell of stirrups at the only place of their beam."""
+    other = np.diff(places.beam, prepend=-1, append=-1) != 0
+    alone = np.flatnonzero(other[1:] & other[:-1])
+    place, within = spread(np.diff(places.first_tie)[alone])
+    model.remark(places.ties[places.first_tie[alone[place]] + within], LONELY)
 
 
 @dataclass(frozen=True, slots=True)
@@ -146,15 +142,21 @@ class _Extremes:
     half_width: Floats
     lowest_grade: Ints
     highest_grade: Ints
+    least: Ints
+    """Its first place of the least area."""
 
 
-def _extremes(places: Places, zones: Sequence[Zone]) -> _Extremes:
-    bounds = np.array([(zone.first, zone.last + 1) for zone in zones], dtype=np.intp)
+def _extremes(places: Places, zones: Zones) -> _Extremes:
+    bounds = np.stack([zones.first, zones.last + 1], axis=1).reshape(-1)
 
     def reduced(ufunc: np.ufunc, values: np.ndarray) -> np.ndarray:
         """Neighbouring zones share a place, so that each is reduced between two bounds."""
-        return np.asarray(ufunc.reduceat(np.append(values, values[-1:]), bounds.reshape(-1))[::2])
+        return np.asarray(ufunc.reduceat(np.append(values, values[-1:]), bounds)[::2])
 
+    zone, within = spread(zones.last - zones.first + 1)
+    place = zones.first[zone] + within
+    is_least = places.area[place] == reduced(np.minimum, places.area)[zone]
+    zone, place = zone[is_least], place[is_least]
     return _Extremes(
         closed=reduced(np.logical_and, places.closed),
         bottom=reduced(np.minimum, places.bottom),
@@ -162,36 +164,39 @@ def _extremes(places: Places, zones: Sequence[Zone]) -> _Extremes:
         half_width=reduced(np.maximum, places.half_width),
         lowest_grade=reduced(np.minimum, places.grade),
         highest_grade=reduced(np.maximum, places.grade),
+        least=place[np.flatnonzero(np.diff(zone, prepend=-1))],
     )
 
 
-def _all_stirrups(model: Measured, places: Places, zones: Sequence[Zone]) -> Iterator[Stirrups]:
-    if not zones:
+def _all_stirrups(model: Measured, places: Places, zones: Zones) -> Iterator[Stirrups]:
+    if not len(zones.first):
         return
-    of_zones = _extremes(places, zones)
-    columns = (of_zones.closed, of_zones.bottom, of_zones.top, of_zones.half_width)
-    areas, rows = places.area.tolist(), places.ties.tolist()
-    bars, begin = model.bar[places.ties].tolist(), places.first_tie.tolist()
-    listed = zip(zones, *(column.tolist() for column in columns), strict=True)
-    for number, (zone, closed, bottom, top, half_width) in enumerate(listed):
-        least = min(range(zone.first, zone.last + 1), key=areas.__getitem__)
-        held = slice(begin[zone.first], begin[zone.last + 1])
-        size, legs = model.size(rows[begin[least]]), int(places.legs[least])
-        grades = int(of_zones.lowest_grade[number]), int(of_zones.highest_grade[number])
+    bounds = _extremes(places, zones)
+    least, rows = bounds.least, places.ties.tolist()
+    bars = model.bar[places.ties].tolist()
+    held = (places.first_tie[zones.first], places.first_tie[zones.last + 1])
+    size = model.places.size[model.rows.strand[places.ties[places.first_tie[least]]]]
+    stretch = (zones.start, zones.end, zones.spacing)
+    legs = (places.diameter[least], places.area[least] / places.legs[least], places.legs[least])
+    reach = (bounds.bottom, bounds.top, bounds.half_width)
+    steel = (bounds.closed, size, bounds.lowest_grade, bounds.highest_grade)
+    columns = (column.tolist() for column in (*stretch, *legs, *reach, *steel, *held))
+    for start, end, spacing, diameter, area, count, *more in zip(*columns, strict=True):
+        bottom, top, half_width, closed, number, low, high, a, b = more
         yield Stirrups(
-            start=zone.start,
-            end=zone.end,
-            spacing=zone.spacing,
-            diameter=float(places.diameter[least]),
-            leg_area=areas[least] / legs,
-            legs=legs,
+            start=start,
+            end=end,
+            spacing=spacing,
+            diameter=diameter,
+            leg_area=area,
+            legs=count,
             closed=closed,
-            yield_strength=_yield_strength(model, grades, rows[held]),
+            yield_strength=_yield_strength(model, (low, high), rows[a:b]),
             bottom=bottom,
             top=top,
             half_width=half_width,
-            designation=size.designation,
-            origin=model.names(bars[held]),
+            designation=model.places.table.sizes[number].designation,
+            origin=model.names(bars[a:b]),
         )
 
 

@@ -5,23 +5,24 @@ from __future__ import annotations
 import re
 from collections.abc import Sequence
 from dataclasses import dataclass
-from functools import lru_cache
 
 import numpy as np
 
-from ifccheck.ifc.bar_paths import Bools, Floats, Ints
+from ifccheck.ifc.bar_paths import Floats, Ints
 from ifccheck.ifc.bar_samples import PathTable, offsets, spread
 from ifccheck.ifc.bar_shapes import FARTHEST
+from ifccheck.ifc.equal_rows import first_of_each, renumbered
 from ifccheck.ifc.step_cursors import read_numbers
-from ifccheck.ifc.step_table import StepTable
+from ifccheck.ifc.step_table import Rests, StepTable
 
-BLANKS = b" \t\r\n"
-_NOT_STRUCTURE = bytes(byte for byte in range(256) if byte not in b"(),")
+_TRIPLE = np.frombuffer(b"(,,),", np.uint8)
+"""The structure of the triples of a list, a comma after each."""
 _SEGMENTS = re.compile(rb"\((IFC(?:LINE|ARC)INDEX\(\([0-9,]+\)\),?)+\)")
 _SEGMENT = re.compile(rb"IFC(LINE|ARC)INDEX\(\(([0-9,]+)\)\)")
 _CURVE_END = re.compile(rb"(.*),(?:\.[FTU]\.|\$)\);", re.DOTALL)
-_LIST_ENDS = (b")));", b")),$);")
-"""How a list of points ends, in earlier schemas and with a list of tags."""
+_LIST_ENDS = (b"));", b"),$);")
+"""How a list of points ends after its triples, in earlier schemas and with a list of tags."""
+OPEN, CLOSE, COMMA = b"(),"
 
 Order = tuple[tuple[int, ...], tuple[int, ...]]
 """Indices of points in order from 0, and the places in that order at which arcs begin."""
@@ -38,6 +39,27 @@ class SweptSolids:
     """[mm]"""
 
 
+@dataclass(frozen=True, slots=True)
+class _Lists:
+    """Points that are listed (L), those of one list after those of another."""
+
+    place: Ints
+    """Which of the lists asked for each is."""
+    points: Floats
+    """In units of the model (N, 3)."""
+    counts: Ints
+
+
+@dataclass(frozen=True, slots=True)
+class _Lines:
+    """Centre lines of curves (C)."""
+
+    place: Ints
+    """Which of the curves asked for each is."""
+    paths: PathTable
+    """In units of the model."""
+
+
 def read_swept_texts(table: StepTable, solids: Ints, scale: float) -> SweptSolids:
     """Read swept solids by their STEP ids.
 
@@ -45,17 +67,11 @@ def read_swept_texts(table: StepTable, solids: Ints, scale: float) -> SweptSolid
     whose curves are of another kind, are left out.
     """
     place, curves, radius = _solids(table, solids)
-    kept, lists, segments = _curves(table, curves)
-    listed, points, counts = _points(table, lists)
-    kept = kept[listed]
-    orders = [
-        _order(segments[at], count)
-        for at, count in zip(listed.tolist(), counts.tolist(), strict=True)
-    ]
-    ordered = np.array([order is not None for order in orders], dtype=bool)
-    paths = _in_order(points * scale, offsets(counts)[:-1][ordered], [o for o in orders if o])
-    found = kept[ordered]
-    return _on_earth(SweptSolids(place[found], paths, 2.0 * radius[found] * scale))
+    lines = _indexed_curves(table, curves)
+    points, first, arcs = lines.paths.points * scale, lines.paths.first, lines.paths.arcs
+    found = place[lines.place]
+    diameter = 2.0 * radius[lines.place] * scale
+    return _on_earth(SweptSolids(found, PathTable(points, first, arcs), diameter))
 
 
 def _solids(table: StepTable, solids: Ints) -> tuple[Ints, Ints, Floats]:
@@ -68,65 +84,80 @@ def _solids(table: StepTable, solids: Ints) -> tuple[Ints, Ints, Floats]:
     return np.flatnonzero(solid.plain), curve[solid.plain], radius[solid.plain]
 
 
-def _curves(table: StepTable, curves: Ints) -> tuple[Ints, Ints, list[bytes]]:
-    """Of the plain curves: which they are, their lists of points and their segments."""
+def _indexed_curves(table: StepTable, curves: Ints) -> _Lines:
+    """Curves that take listed points in order, by their STEP ids."""
+    place, lists, segments, texts = _segments(table, curves)
+    listed = _listed_points(table, lists)
+    key = np.column_stack((segments[listed.place], listed.counts))
+    first, number = first_of_each(key)
+    orders = [_order(texts[segment], count) for segment, count in key[first].tolist()]
+    kept = np.array([order is not None for order in orders], dtype=bool)[number]
+    begin = offsets(listed.counts)[:-1][kept]
+    used, number = renumbered(number[kept], len(orders))
+    runs = [order for order in (orders[one] for one in used.tolist()) if order is not None]
+    return _Lines(place[listed.place[kept]], _in_order(listed.points, begin, runs, number))
+
+
+def _segments(table: StepTable, curves: Ints) -> tuple[Ints, Ints, Ints, list[bytes]]:
+    """Of the plain curves: which they are, their lists of points, and which of several texts
+    their segments are; and those texts."""
     curve = table.cursors(curves, "IFCINDEXEDPOLYCURVE")
     points = curve.reference()
     curve.tokens(b",")
-    segments = [_segments(rest) for rest in table.rest(curve, curves)]
-    plain = np.array([text is not None for text in segments], dtype=bool)
-    return np.flatnonzero(plain), points[plain], [text for text in segments if text is not None]
+    rests = table.rests(curve, curves).without_blanks()
+    first, number = rests.first_of_each()
+    found = [_CURVE_END.fullmatch(rests.of(row)) for row in first.tolist()]
+    plain = np.array([one is not None for one in found], dtype=bool)[number]
+    texts = [b"" if one is None else one[1] for one in found]
+    return np.flatnonzero(plain), points[plain], number[plain], texts
 
 
-@lru_cache(maxsize=4096)
-def _segments(rest: bytes) -> bytes | None:
-    """The segments of a curve, from the rest of its statement; None where it is not plain."""
-    found = _CURVE_END.fullmatch(rest.translate(None, BLANKS))
-    return None if found is None else found[1]
-
-
-def _points(table: StepTable, lists: Ints) -> tuple[Ints, Floats, Ints]:
-    """Of the plain lists: which they are, all their points (N, 3) and the number of each."""
+def _listed_points(table: StepTable, lists: Ints) -> _Lists:
+    """The points of plain lists, by STEP ids."""
     cursors = table.cursors(lists, "IFCCARTESIANPOINTLIST3D")
     cursors.tokens(b"(", b"(")
-    texts = [_triples(rest) for rest in table.rest(cursors, lists)]
-    found = [place for place, text in enumerate(texts) if text]
-    joined = b"".join(texts[place] for place in found)
-    if not found:
-        return np.zeros(0, dtype=np.intp), np.zeros((0, 3)), np.zeros(0, dtype=np.intp)
-    points, sound = _all_numbers(joined)
-    counts = np.array([texts[place].count(b"(") for place in found], dtype=np.intp)
-    kept = np.logical_and.reduceat(sound, offsets(counts)[:-1])
-    points = points[np.repeat(kept, counts)]
-    return np.array(found, dtype=np.intp)[kept], points, counts[kept]
+    rests = table.rests(cursors, lists).without_blanks()
+    plain, counts, begins, ends = _triples(rests)
+    numbers, stop, sound = read_numbers(rests.data, begins)
+    are_three = (sound & (stop == ends)).reshape(-1, 3).all(axis=1)
+    kept = np.ones(len(plain), dtype=bool)
+    kept[np.repeat(np.arange(len(plain)), counts)[~are_three]] = False
+    points = numbers.reshape(-1, 3)
+    return _Lists(plain[kept], points[np.repeat(kept, counts)], counts[kept])
 
 
-def _triples(rest: bytes) -> bytes:
-    """The triples of a list of points, ``(1.,2.,3.),(4.,5.,6.),``, from its second bracket on;
-    empty where it holds anything else."""
-    text = rest.translate(None, BLANKS)
-    end = next((end for end in _LIST_ENDS if text.endswith(end)), None)
-    if end is None:
-        return b""
-    body = b"(" + text[: -len(end)] + b"),"
-    structure = body.translate(None, _NOT_STRUCTURE)
-    return body if structure == b"(,,)," * (len(structure) // 5) else b""
+def _triples(rests: Rests) -> tuple[Ints, Ints, Ints, Ints]:
+    """Which lists of points are triples, ``1.,2.,3.),(4.,5.,6.)));``, after three brackets.
+
+    Returns these, how many triples each has, and where their numbers begin and end.
+    """
+    data, first = rests.data, rests.first[:-1]
+    signs = np.flatnonzero((data == OPEN) | (data == CLOSE) | (data == COMMA))
+    bounds = np.searchsorted(signs, rests.first)
+    held = np.searchsorted(signs, _before_ends(rests)) - bounds[:-1]
+    row, within = spread(np.diff(bounds))
+    place = (within + 1) % len(_TRIPLE)
+    wrong = (data[signs] != _TRIPLE[place]) & (within < held[row])
+    plain = held % len(_TRIPLE) == len(_TRIPLE) - 2
+    plain[row[wrong]] = False
+    ends = np.flatnonzero(plain[row] & (within < held[row]) & (place > 0) & (place < 4))
+    begins = np.where(within[ends] == 0, first[row[ends]], signs[ends - 1] + 1)
+    kept = np.flatnonzero(plain)
+    return kept, (held[kept] + 2) // len(_TRIPLE), begins, signs[ends]
 
 
-def _all_numbers(triples: bytes) -> tuple[Floats, Bools]:
-    """The numbers of triples (N, 3), and which of these are three numbers."""
-    data = np.frombuffer(triples, np.uint8)
-    opens, commas = (data == sign for sign in b"(,")
-    goes_on = np.append(~opens[1:], False)
-    begins = np.flatnonzero(opens | (commas & goes_on)) + 1
-    numbers, stop, sound = read_numbers(data, begins)
-    ends = data.take(stop, mode="clip")
-    sound &= (ends == ord(",")) | (ends == ord(")"))
-    are_three: Bools = np.asarray(sound.reshape(-1, 3).all(axis=1))
-    return numbers.reshape(-1, 3), are_three
+def _before_ends(rests: Rests) -> Ints:
+    """Where the triples of lists end; where the lists begin for those that end otherwise."""
+    first, stop = rests.first[:-1], rests.first[1:]
+    found = first
+    for end in _LIST_ENDS:
+        ends = stop - first > len(end)
+        for place, sign in enumerate(end):
+            ends &= rests.data.take(stop - len(end) + place, mode="clip") == sign
+        found = np.where(ends, stop - len(end), found)
+    return found
 
 
-@lru_cache(maxsize=4096)
 def _order(segments: bytes, count: int) -> Order | None:
     """The order in which a curve takes its points; None where it is not plain."""
     if segments == b"$":
@@ -149,13 +180,11 @@ def _order(segments: bytes, count: int) -> Order | None:
     return tuple(order), tuple(arcs)
 
 
-def _in_order(points: Floats, begin: Ints, orders: Sequence[Order]) -> PathTable:
-    """Centre lines that take points in order; those of each begin at a place."""
-    numbers: dict[Order, int] = {}
-    number = np.array([numbers.setdefault(order, len(numbers)) for order in orders], dtype=np.intp)
-    line, index = _laid_out([indices for indices, _ in numbers], number)
-    arc_line, arc = _laid_out([arcs for _, arcs in numbers], number)
-    first = offsets(np.bincount(line, minlength=len(orders)))
+def _in_order(points: Floats, begin: Ints, orders: Sequence[Order], number: Ints) -> PathTable:
+    """Centre lines that take points in numbered orders; those of each begin at a place."""
+    line, index = _laid_out([indices for indices, _ in orders], number)
+    arc_line, arc = _laid_out([arcs for _, arcs in orders], number)
+    first = offsets(np.bincount(line, minlength=len(number)))
     return PathTable(points[begin[line] + index], first, first[arc_line] + arc)
 
 

@@ -63,7 +63,8 @@ class _Bars:
         product, outer = np.array(self._bars, dtype=np.intp).reshape(-1, 2).T
         bar, path, inner = np.array(self._strands, dtype=np.intp).reshape(-1, 3).T
         move = np.array(self._moves, dtype=float).reshape(-1, 3)
-        return BarColumns(product, self._names, self._data, outer, move, bar, path, inner)
+        own = np.arange(len(product))
+        return BarColumns(product, own, self._names, own, self._data, outer, move, bar, path, inner)
 
 
 def _placement(readers: BarReaders, placement: Entity | None) -> tuple[int, Sequence[float]]:
