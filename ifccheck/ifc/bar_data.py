@@ -109,16 +109,13 @@ class BarData:
 
     def relations_of(self, step_ids: Ints) -> tuple[Ints, ...]:
         """Numbers of what bars are related to: the same where ``related`` gives the same."""
-        relations = self._context.relations
-        ids = step_ids.tolist()
-        sets = [relations.sets.get(one, ()) for one in ids] if relations.sets else []
-        numbers: dict[tuple[int, ...], int] = {(): 0}
-        held = [numbers.setdefault(tuple(one), len(numbers)) if one else 0 for one in sets]
-        return (
-            _looked_up(relations.types, ids),
-            _looked_up(relations.materials, ids),
-            np.array(held or [0] * len(ids), dtype=np.intp),
-        )
+        relations, ids = self._context.relations, step_ids.tolist()
+        held = np.zeros(len(ids), dtype=np.intp)
+        numbers: dict[tuple[int, ...], int] = {}
+        has_sets = np.fromiter(map(relations.sets.__contains__, ids), dtype=bool, count=len(ids))
+        for row in np.flatnonzero(has_sets).tolist():
+            held[row] = numbers.setdefault(tuple(relations.sets[ids[row]]), len(numbers) + 1)
+        return _looked_up(relations.types, ids), _looked_up(relations.materials, ids), held
 
     def size_in(self, name: str) -> str:
         """The bar size in the name of a bar."""

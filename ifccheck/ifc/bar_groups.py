@@ -99,14 +99,15 @@ def _all_bars(model: Measured, runs: Runs, groups: _Groups) -> Iterator[Bars]:
     """The bars of each group."""
     table, run = model.places.table, groups.run
     strand = model.rows.strand[runs.row[run]]
-    bars, ys = model.bar[runs.row[groups.runs]].tolist(), runs.y[groups.runs].tolist()
+    ys = runs.y[groups.runs].tolist()
+    names = model.names(model.bar[runs.row[groups.runs]], groups.first, groups.stop)
     columns = (
         *(groups.first, groups.stop, groups.start, groups.end, groups.z),
         *(model.places.size[strand], model.places.grade[strand]),
         *(runs.start_hook[run], runs.end_hook[run]),
     )
-    listed = zip(*(column.tolist() for column in columns), strict=True)
-    for a, b, start, end, z, number, grade, start_hook, end_hook in listed:
+    listed = zip(names, *(column.tolist() for column in columns), strict=True)
+    for name, a, b, start, end, z, number, grade, start_hook, end_hook in listed:
         size = table.sizes[number]
         yield Bars(
             count=b - a,
@@ -120,5 +121,5 @@ def _all_bars(model: Measured, runs: Runs, groups: _Groups) -> Iterator[Bars]:
             start_anchor=Anchor.HOOK if start_hook else Anchor.STRAIGHT,
             end_anchor=Anchor.HOOK if end_hook else Anchor.STRAIGHT,
             designation=size.designation,
-            origin=model.names(bars[a:b]),
+            origin=name,
         )

@@ -9,7 +9,7 @@ import numpy as np
 import numpy.typing as npt
 
 from ifccheck.ifc.bar_paths import Bools, Floats, Ints
-from ifccheck.ifc.bar_samples import Samples
+from ifccheck.ifc.bar_samples import Samples, offsets, spread
 
 LEAST_STEP = 1e-3
 """Shorter steps [mm] of a centre line are left out."""
@@ -37,6 +37,24 @@ class CentreLines:
         """How many bars."""
         return len(self.first) - 1
 
+    def take(self, kept: Ints) -> CentreLines:
+        """Some of the bars, in any order."""
+        counts = np.diff(self.first)[kept]
+        row, within = spread(counts)
+        point = self.first[kept][row] + within
+        diameter = self.diameter[kept]
+        return CentreLines(self.points[point], self.arc[point], row, offsets(counts), diameter)
+
+    def with_more(self, more: CentreLines) -> CentreLines:
+        """These bars and more behind them."""
+        return CentreLines(
+            np.concatenate((self.points, more.points)),
+            np.concatenate((self.arc, more.arc)),
+            np.concatenate((self.row, more.row + self.count)),
+            np.concatenate((self.first, more.first[1:] + len(self.points))),
+            np.concatenate((self.diameter, more.diameter)),
+        )
+
     def lowest(self) -> Floats:
         """Least coordinates of each bar's centre line (R, 3)."""
         return np.minimum.reduceat(self.points, self.first[:-1], axis=0)
@@ -52,11 +70,10 @@ def place(
     """Place sampled paths: one row per bar, with its path (R), rotation (R, 3, 3) and
     translation (R, 3)."""
     counts = samples.first[path + 1] - samples.first[path]
-    first = np.concatenate(([0], np.cumsum(counts))).astype(np.intp)
-    row = np.repeat(np.arange(len(path)), counts)
-    source = np.arange(first[-1]) - first[row] + samples.first[path][row]
+    row, within = spread(counts)
+    source = samples.first[path][row] + within
     points = np.einsum("nij,nj->ni", rotation[row], samples.points[source]) + translation[row]
-    return CentreLines(points, samples.arc[source], row, first, diameter)
+    return CentreLines(points, samples.arc[source], row, offsets(counts), diameter)
 
 
 @dataclass(frozen=True, slots=True)

@@ -66,7 +66,7 @@ def others(count: int, taken: Ints) -> Ints:
 def spread(counts: Ints) -> tuple[Ints, Ints]:
     """Number of the run of each entry of several runs, and its place in that run."""
     run = np.repeat(np.arange(len(counts)), counts)
-    return run, np.arange(len(run)) - offsets(counts)[run]
+    return run, np.arange(len(run)) - np.repeat(offsets(counts)[:-1], counts)
 
 
 @dataclass(frozen=True, slots=True)

@@ -72,7 +72,9 @@ def find_runs(lines: CentreLines, pieces: Pieces) -> Runs:
 
 
 def _ended(pieces: Pieces, run: Ints, diameter: Floats, lowest: Floats, highest: Floats) -> Runs:
-    ends = [_follow_end(pieces, run, diameter[pieces.row[run]], step) for step in (-1, 1)]
+    thick = diameter[pieces.row[run]]
+    tails = _straight_tails(pieces, thick, run)
+    ends = [_follow_end(pieces, run, thick, tails, step) for step in (-1, 1)]
     forward = pieces.direction[run, 0] > 0.0
     drawn = np.stack([pieces.start[run], pieces.end[run]], axis=1)
     (back_x, back_hook, back_bend), (fore_x, fore_hook, fore_bend) = ends
@@ -91,7 +93,7 @@ def _ended(pieces: Pieces, run: Ints, diameter: Floats, lowest: Floats, highest:
 
 
 def _follow_end(
-    pieces: Pieces, run: Ints, diameter: Floats, step: int
+    pieces: Pieces, run: Ints, diameter: Floats, tail: Floats, step: int
 ) -> tuple[Floats, Bools, Bools]:
     """Follow bars beyond one end of their runs: x of the end, whether hooked, whether bent."""
     outward = pieces.direction[run] * step
@@ -99,20 +101,20 @@ def _follow_end(
     far = pieces.end if step > 0 else pieces.start
     tip = far[run, 0] * sign
     reach = tip.copy()
-    tail = _straight_tails(pieces, diameter, run)
     neighbour = pieces.neighbour(step)
-    at, active = neighbour[run], neighbour[run] >= 0
     hooked, bent = np.zeros(len(run), dtype=bool), np.zeros(len(run), dtype=bool)
-    while active.any():
-        turn = (pieces.direction[at] * step * outward).sum(axis=1)
-        straight = pieces.straight[at]
-        reach = np.where(active, np.maximum(reach, far[at, 0] * sign), reach)
-        hook = active & straight & _is_hook(turn, tail[at], diameter)
-        inclined = straight & (turn > SQUARE_TURN) & (pieces.length[at] > LONGEST_CHORD * diameter)
-        hooked |= hook
-        bent |= active & (turn <= SQUARE_TURN)
-        active = active & ~hook & ~inclined & (neighbour[at] >= 0)
-        at = np.where(active, neighbour[at], at)
+    left = np.flatnonzero(neighbour[run] >= 0)
+    at = neighbour[run[left]]
+    while len(left):
+        turn = (pieces.direction[at] * step * outward[left]).sum(axis=1)
+        straight, thick = pieces.straight[at], diameter[left]
+        reach[left] = np.maximum(reach[left], far[at, 0] * sign[left])
+        hook = straight & _is_hook(turn, tail[at], thick)
+        inclined = straight & (turn > SQUARE_TURN) & (pieces.length[at] > LONGEST_CHORD * thick)
+        hooked[left] = hook
+        bent[left] |= turn <= SQUARE_TURN
+        goes_on = ~hook & ~inclined & (neighbour[at] >= 0)
+        left, at = left[goes_on], neighbour[at[goes_on]]
     x = np.where(hooked, reach + diameter / 2.0, tip) * sign
     return x, hooked, bent & ~hooked
 
@@ -127,12 +129,12 @@ def _straight_tails(pieces: Pieces, diameter: Floats, run: Ints) -> Floats:
     """Length of each piece [mm] less what the bends at corners drawn sharp take from it."""
     by_row = np.ones(int(pieces.row.max(initial=-1)) + 1)
     by_row[pieces.row[run]] = diameter
-    thick = by_row[pieces.row]
     lost = np.zeros(len(pieces.row) + 1)
-    turn = (pieces.direction[1:] * pieces.direction[:-1]).sum(axis=1)
     sharp = (pieces.row[1:] == pieces.row[:-1]) & pieces.straight[1:] & pieces.straight[:-1]
+    corner = np.flatnonzero(sharp)
+    turn = (pieces.direction[corner + 1] * pieces.direction[corner]).sum(axis=1)
     half = np.arccos(np.clip(turn, -0.999, 1.0)) / 2.0
-    lost[1:-1] = np.where(sharp, bend_radius(thick[1:]) * np.tan(half), 0.0)
+    lost[corner + 1] = bend_radius(by_row[pieces.row[corner]]) * np.tan(half)
     return np.asarray(pieces.length - lost[:-1] - lost[1:])
 
 

@@ -2,8 +2,9 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Iterator, Sequence
+from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
+from itertools import islice
 
 import numpy as np
 
@@ -34,10 +35,14 @@ class Measured:
         """What people call the bar of a row."""
         return self.places.table.label(int(self.bar[row]))
 
-    def names(self, bars: Iterable[int]) -> str:
-        """What people call some bars."""
-        bars = list(dict.fromkeys(bars))
-        return name_bars([self.places.table.label(bar) for bar in bars[:LISTED]], len(bars))
+    def names(self, bars: Ints, first: Ints, stop: Ints) -> list[str]:
+        """What people call bars, those of each of several runs together."""
+        listed = bars.tolist()
+        bounds = zip(first.tolist(), stop.tolist(), strict=True)
+        runs = [list(dict.fromkeys(listed[a:b])) for a, b in bounds]
+        named = [bar for run in runs for bar in run[:LISTED]]
+        labels = iter(self.places.table.labels(np.array(named, dtype=np.intp)))
+        return [name_bars(list(islice(labels, min(LISTED, len(run)))), len(run)) for run in runs]
 
     def size(self, row: int) -> BarSize:
         """Size of the bar of a row."""
@@ -85,8 +90,7 @@ class Measured:
             yield at, one, labels[a:b]
 
 
-def measure(places: BarPlaces, rows: Rows, findings: Findings) -> Measured:
-    """Measure strands in the axes of their beams."""
-    lines = places.centre_lines(rows)
+def measure(places: BarPlaces, rows: Rows, lines: CentreLines, findings: Findings) -> Measured:
+    """Measure strands in the axes of their beams by their centre lines there."""
     bar = places.table.bar[rows.strand]
     return Measured(places, rows, lines, cut_into_pieces(lines), findings, bar)

@@ -12,7 +12,7 @@ from ifccheck.ifc.bar_findings import Findings
 from ifccheck.ifc.bar_groups import longitudinal_bars
 from ifccheck.ifc.bar_outlines import FIT_TOLERANCE, legs_outside, runs_outside
 from ifccheck.ifc.bar_paths import Bools, Floats, Ints
-from ifccheck.ifc.bar_pieces import count_by_row
+from ifccheck.ifc.bar_pieces import CentreLines, count_by_row
 from ifccheck.ifc.bar_rows import BarPlaces, Rows
 from ifccheck.ifc.bar_sizes import BarSize
 from ifccheck.ifc.bars import ALONG, LEAST_RUN, LONGEST_CHORD, Runs, find_runs
@@ -52,14 +52,39 @@ def reduce_bars(places: BarPlaces, rows: Rows, findings: Findings) -> Physical:
     """Reduce strands to longitudinal bars and stirrups; what is left out goes to the findings."""
     if not len(rows.strand):
         return Physical({}, {})
-    stands_for, shift = places.alike(rows)
-    shapes = np.unique(stands_for)
-    square = np.zeros(len(rows.strand), dtype=bool)
-    square[shapes] = lies_square(places.centre_lines(rows.take(shapes)))
-    square = square[stands_for]
-    bars = _along(measure(places, rows.take(~square), findings))
-    tied = Tied(rows.take(square), stands_for[square], shift[square])
-    return Physical(bars, _across(places, tied, rows, findings, bars))
+    alike = _Alike(places, rows)
+    square = alike.square
+    along = np.flatnonzero(~square)
+    bars = _along(measure(places, rows.take(along), alike.lines(along), findings))
+    tied = Tied(rows.take(square), alike.stands_for[square], alike.shift[square])
+    shapes, shape = np.unique(tied.stands_for, return_inverse=True)
+    model = measure(places, rows.take(shapes), alike.lines(shapes), findings)
+    return Physical(bars, _across(model, tied, shape, bars))
+
+
+class _Alike:
+    """Rows of which only those are measured that differ by more than a place along a beam."""
+
+    def __init__(self, places: BarPlaces, rows: Rows) -> None:
+        self._places, self._rows = places, rows
+        self.stands_for, self.shift = places.alike(rows)
+        self._known = np.unique(self.stands_for)
+        self._lines = places.centre_lines(rows.take(self._known))
+        square = np.zeros(len(rows.strand), dtype=bool)
+        square[self._known] = lies_square(self._lines)
+        self.square: Bools = square[self.stands_for]
+        """Whether each lies square to its beam."""
+
+    def lines(self, wanted: Ints) -> CentreLines:
+        """Centre lines of some of the rows, in order."""
+        more = np.setdiff1d(wanted, self._known, assume_unique=True)
+        known = np.concatenate((self._known, more))
+        lines = self._lines
+        if len(more):
+            lines = lines.with_more(self._places.centre_lines(self._rows.take(more)))
+        place = np.zeros(len(self._rows.strand), dtype=np.intp)
+        place[known] = np.arange(len(known))
+        return lines.take(place[wanted])
 
 
 def _along(model: Measured) -> dict[int, tuple[Bars, ...]]:
@@ -77,17 +102,12 @@ def _along(model: Measured) -> dict[int, tuple[Bars, ...]]:
 
 
 def _across(
-    places: BarPlaces,
-    tied: Tied,
-    rows: Rows,
-    findings: Findings,
-    bars: Mapping[int, tuple[Bars, ...]],
+    model: Measured, tied: Tied, shape: Ints, bars: Mapping[int, tuple[Bars, ...]]
 ) -> dict[int, tuple[Stirrups, ...]]:
-    """Bars that lie square to their beams; of those alike only one is measured."""
-    if not len(tied.shift):
+    """Bars that lie square to their beams; the shapes were measured, and each has one of them."""
+    if not len(shape):
         return {}
-    shapes, shape = np.unique(tied.stands_for, return_inverse=True)
-    model = measure(places, rows.take(shapes), findings)
+    places = model.places
     of_shapes, legs = _find_ties(model)
     outside = _outside(model, anywhere=True)
     outside |= legs_outside(places.frames, model.rows.beam, of_shapes.x, legs, model.lines.diameter)

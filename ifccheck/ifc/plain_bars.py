@@ -28,7 +28,7 @@ from ifccheck.ifc.bar_samples import offsets, others, spread
 from ifccheck.ifc.bar_shapes import Strand
 from ifccheck.ifc.bar_texts import BarTexts, read_bar_texts
 from ifccheck.ifc.entity import ILL_TYPED, UnreadableError
-from ifccheck.ifc.equal_rows import first_of_each, renumbered
+from ifccheck.ifc.equal_rows import first_of_each, first_of_each_number, renumbered
 from ifccheck.ifc.placements import IDENTITY
 from ifccheck.ifc.step_table import StepTable
 from ifccheck.ifc.swept_texts import read_swept_texts
@@ -104,7 +104,7 @@ def read_plain_bars(readers: BarReaders, table: StepTable, bars: Ints) -> tuple[
 
 def _read_shapes(readers: BarReaders, table: StepTable, chains: Chains) -> _Shapes:
     key = np.where(chains.source > 0, (chains.source << _HALF) | chains.target, chains.item)
-    _, row, number = np.unique(key, return_index=True, return_inverse=True)
+    row, number = first_of_each_number(key)
     solids = np.flatnonzero(chains.source[row] == 0)
     scale = readers.context.units.length
     swept = read_swept_texts(table, chains.item[row[solids]], scale)
@@ -127,7 +127,7 @@ def _read_shapes(readers: BarReaders, table: StepTable, chains: Chains) -> _Shap
     columns = np.concatenate((columns, np.array(strands, dtype=np.intp).reshape(-1, 3)))
     shape, path, inners = columns[np.argsort(columns[:, 0], kind="stable")].T
     first = offsets(np.bincount(shape, minlength=len(row)))
-    return _Shapes(number.reshape(-1), first, path, inners, thickness, wrong)
+    return _Shapes(number, first, path, inners, thickness, wrong)
 
 
 def _strands(readers: BarReaders, chains: Chains, row: int) -> tuple[Strand, ...]:
@@ -138,7 +138,7 @@ def _strands(readers: BarReaders, chains: Chains, row: int) -> tuple[Strand, ...
 
 
 def _read_parents(readers: BarReaders, chains: Chains) -> Shared[int]:
-    _, first, number = np.unique(chains.parent, return_index=True, return_inverse=True)
+    first, number = first_of_each_number(chains.parent)
     return shared(first, number, lambda row: readers.parent(int(chains.parent[row])))
 
 

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Collection, Iterator, Mapping
+from collections.abc import Collection, Mapping
 from dataclasses import replace
 
 import numpy as np
@@ -78,7 +78,7 @@ def _physical(
     findings = Findings(lambda beam: str(context.file.by_id(frames.ids[beam])[0]))
     finder = Hosts(context.file, context.relations, hosts)
     _tell_meshes(context, finder, frames, findings)
-    bars, ties = _tied_bars(context, finder)
+    bars, ties = _tied_bars(context, finder, statements)
     table = gather_bars(context, bars, statements)
     places = BarPlaces(table, frames)
     found = find_rows(places, ties.take(table.product))
@@ -90,22 +90,29 @@ def _physical(
     return _collected(frames, physical, findings, described)
 
 
-def _tied_bars(context: Context, finder: Hosts) -> tuple[Ints, BarHosts]:
+def _tied_bars(
+    context: Context, finder: Hosts, statements: StepTable | None
+) -> tuple[Ints, BarHosts]:
     """Bars that may lie in one of the beams, by STEP ids, and how each is tied."""
-    bars = np.array(list(_bars(context)), dtype=np.intp)
+    bars = _all_bars(context, statements)
     ties = finder.of_all(bars)
     near = ~ties.tied("elsewhere")
     return bars[near], ties.take(near)
 
 
-def _bars(context: Context) -> Iterator[int]:
+def _all_bars(context: Context, statements: StepTable | None) -> Ints:
     """STEP ids of bars, and of other elements whose type is that of a bar."""
-    yield from [bar.id() for bar in context.file.by_type("IfcReinforcingBar")]
-    types = {entity.id() for entity in _instances(context, "IfcReinforcingBarType")}
-    if types:
-        for step_id, type_id in context.relations.types.items():
-            if type_id in types and not context.file.by_id(step_id).is_a("IfcReinforcingBar"):
-                yield step_id
+    bars = None if statements is None else statements.ids_of("IFCREINFORCINGBAR")
+    if bars is None:
+        listed = [bar.id() for bar in context.file.by_type("IfcReinforcingBar")]
+        bars = np.array(listed, dtype=np.intp)
+    types = [entity.id() for entity in _instances(context, "IfcReinforcingBarType")]
+    if not types:
+        return bars
+    typed = np.fromiter(context.relations.types, dtype=np.intp)
+    type_ids = np.fromiter(context.relations.types.values(), dtype=np.intp)
+    typed = typed[np.isin(type_ids, types)]
+    return np.concatenate((bars, typed[~np.isin(typed, bars)]))
 
 
 def _tell_meshes(context: Context, finder: Hosts, frames: BeamFrames, findings: Findings) -> None:

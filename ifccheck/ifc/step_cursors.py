@@ -6,12 +6,15 @@ nothing is guessed of it. Blanks and line breaks between tokens are passed over.
 
 from __future__ import annotations
 
+from collections.abc import Iterator
+
 import numpy as np
 import numpy.typing as npt
 
 from ifccheck.ifc.bar_paths import Bools, Floats, Ints
 
 Bytes = npt.NDArray[np.uint8]
+Words = npt.NDArray[np.uint64]
 
 _ZERO, _POINT, _MINUS, _PLUS, _EXPONENT, _HASH, _QUOTE, _NOTHING = b"0.-+E#'$"
 BLANKS = b" \t\r\n"
@@ -22,6 +25,10 @@ EXACT_DIGITS, EXACT_POWER = 15, 22
 """Whole numbers of so many digits, and powers of ten up to this, are exact as doubles."""
 LONGEST_TEXT = 80
 """Longer texts are not passed over."""
+_WORD = 8
+"""Bytes of a word."""
+_ONES = np.uint64(0x0101010101010101)
+_HIGH_BITS, _QUOTES = _ONES * np.uint64(0x80), _ONES * np.uint64(_QUOTE)
 _POWERS = 10.0 ** np.arange(EXACT_POWER + 1)
 
 
@@ -36,9 +43,24 @@ class Cursors:
         """Whether all that was asked of a statement so far stands there."""
 
     def tokens(self, *texts: bytes) -> None:
-        """Pass over signs and words, each after any blanks."""
-        for text in texts:
-            self._pass(self._stands_here(text), len(text))
+        """Pass over signs and words, each after any blanks.
+
+        Most statements have none there, so that all is compared at once first.
+        """
+        together = b"".join(texts)
+        found = self._begins_with(together) & self.plain
+        left = np.flatnonzero(self.plain & ~found)
+        self.at = self.at + len(together) * found
+        if len(left):
+            others = Cursors(self._data, self.at[left], np.ones(len(left), dtype=bool))
+            for text in texts:
+                others._pass(others._stands_here(text), len(text))
+            self.at[left], found[left] = others.at, others.plain
+            self.plain = found
+
+    def blanks(self) -> None:
+        """Pass over blanks, if there are any."""
+        self._skip_blanks()
 
     def reference(self) -> Ints:
         """Read ``#12`` as 12."""
@@ -65,15 +87,11 @@ class Cursors:
     def text_or_nothing(self) -> None:
         """Pass over a text without apostrophes, or ``$``."""
         nothing = self._stands_here(b"$")
-        within = self._stands_here(b"'") & self.plain
-        self._pass(nothing | within, 1)
-        for _ in range(LONGEST_TEXT):
-            within &= self._data.take(self.at, mode="clip") != _QUOTE
-            if not within.any():
-                break
-            self.at = self.at + within
-        self._pass(nothing | (self._data.take(self.at, mode="clip") == _QUOTE), 1)
-        self.at = np.where(self.plain & nothing, self.at - 1, self.at)
+        self._pass(nothing | self._stands_here(b"'"), 1)
+        within = np.flatnonzero(self.plain & ~nothing)
+        stop, ended = _next_quotes(self._data, self.at[within])
+        self.at[within] = stop + ended
+        self.plain[within] = ended
 
     def _skip_blanks(self) -> None:
         blank = IS_BLANK[self._data.take(self.at, mode="clip")] & self.plain
@@ -89,9 +107,14 @@ class Cursors:
         return self._begins_with(text)
 
     def _begins_with(self, text: bytes) -> Bools:
+        if len(text) == 1:
+            return np.asarray(self._data.take(self.at, mode="clip") == text[0])
         found = np.ones(len(self.at), dtype=bool)
-        for place in range(len(text) - 1, -1, -1):  # classes differ in their last letters
-            found &= self._data.take(self.at + place, mode="clip") == text[place]
+        wanted = [text[place : place + _WORD] for place in range(0, len(text), _WORD)]
+        for part, words in zip(wanted, words_at(self._data, self.at, len(wanted)), strict=True):
+            if len(part) < _WORD:
+                words &= np.uint64((1 << 8 * len(part)) - 1)
+            found &= words == np.uint64(int.from_bytes(part, "little"))
         return found
 
     def _pass(self, found: Bools, length: int) -> None:
@@ -101,6 +124,37 @@ class Cursors:
     def _end_token(self, stop: Ints, sound: Bools) -> None:
         self.plain = self.plain & sound
         self.at = np.where(self.plain, stop, self.at)
+
+
+def words_at(data: Bytes, at: Ints, count: int) -> Iterator[Words]:
+    """Words of eight bytes each from offsets on, the first byte lowest; zeros behind the end."""
+    if int(at.max(initial=0)) + (count + 1) * _WORD > len(data):
+        data = np.append(data, np.zeros((count + 1) * _WORD, dtype=np.uint8))
+    aligned = data[: len(data) // _WORD * _WORD].view("<u8")
+    index, shift = at // _WORD, (at % _WORD * 8).astype(np.uint64)
+    words = aligned.take(index, mode="clip")
+    for place in range(1, count + 1):
+        following = aligned.take(index + place, mode="clip")
+        yield (words >> shift) | (following << (np.uint64(64) - shift))  # by 64: none of it
+        words = following
+
+
+def _next_quotes(data: Bytes, at: Ints) -> tuple[Ints, Bools]:
+    """Where the next apostrophe from each offset on stands, and whether one stands near."""
+    stop, found = at.copy(), np.zeros(len(at), dtype=bool)
+    left = np.arange(len(at))
+    for _ in range(LONGEST_TEXT // _WORD):
+        (words,) = words_at(data, stop[left], 1)
+        other = words ^ _QUOTES
+        is_quote = (other - _ONES) & ~other & _HIGH_BITS  # true of the first one at least
+        lowest = is_quote & (np.uint64(0) - is_quote)
+        before = ((((lowest - np.uint64(1)) & _HIGH_BITS) >> np.uint64(7)) * _ONES) >> np.uint64(56)
+        stop[left] += before.astype(np.intp)
+        found[left] = lowest > 0
+        left = left[lowest == 0]
+        if not len(left):
+            break
+    return stop, found
 
 
 def read_whole_numbers(data: Bytes, at: Ints) -> tuple[Ints, Ints, Bools]:

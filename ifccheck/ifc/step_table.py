@@ -7,6 +7,7 @@ bars asks for half a million of them. What is not written in the plainest way is
 from __future__ import annotations
 
 import re
+import string
 from collections.abc import Iterator, Sequence
 
 import numpy as np
@@ -16,8 +17,13 @@ from ifccheck.ifc.equal_rows import first_of_each_text
 from ifccheck.ifc.lexer import Offsets, Scan
 from ifccheck.ifc.step_cursors import BLANKS, IS_BLANK, Cursors
 
+_LETTERS = (string.ascii_letters + string.digits + "_").encode()
 _POWERS_OF_TEN = 10 ** np.arange(10)
 _HIDDEN_QUOTE = re.compile(rb"\\S\\'")
+_LOWER = np.uint8(0x20)
+"""What tells a small letter from a capital."""
+_GOES_ON = np.isin(np.arange(256), np.frombuffer(_LETTERS, np.uint8))
+"""Signs with which the name of a class may go on."""
 SPARSE = 8
 """Numbers of statements are looked up in a table where it is not this many times as long."""
 
@@ -29,8 +35,12 @@ _MARGIN = bytes(64)
 class StepTable:
     """The statements of a file by number."""
 
-    def __init__(self, data: bytes, ids: Offsets, starts: Offsets, stops: Offsets) -> None:
+    def __init__(
+        self, data: bytes, ids: Offsets, starts: Offsets, stops: Offsets, hides: bool = False
+    ) -> None:
         self._data = data
+        self._hides = hides
+        """Whether statements of the file are left out."""
         self._bytes = np.frombuffer(data, np.uint8)
         order = np.argsort(ids, kind="stable")
         self._ids, self._starts, self._stops = ids[order], starts[order], stops[order]
@@ -61,6 +71,24 @@ class StepTable:
         cursors = Cursors(self._bytes, self._after_numbers[rows], rows >= 0)
         cursors.tokens(b"=", word.encode(), b"(")
         return cursors
+
+    def ids_of(self, word: str) -> Ints | None:
+        """Numbers of the instances of a class, from the least on; None where it cannot be told
+        of every statement."""
+        cursors = Cursors(self._bytes, self._after_numbers, np.ones(len(self._ids), dtype=bool))
+        cursors.tokens(b"=")
+        cursors.blanks()
+        if self._hides or not cursors.plain.all():
+            return None
+        letters = np.frombuffer(word.encode(), np.uint8) | _LOWER
+        rows = np.arange(len(self._ids))
+        for place in (len(word) - 1, *range(len(word) - 1)):  # most classes end otherwise
+            found = self._bytes.take(cursors.at[rows] + place, mode="clip")
+            rows = rows[found | _LOWER == letters[place]]
+        rows = rows[~_GOES_ON[self._bytes.take(cursors.at[rows] + len(word), mode="clip")]]
+        named = Cursors(self._bytes, cursors.at[rows], np.ones(len(rows), dtype=bool))
+        named.tokens(word.encode(), b"(")
+        return self._ids[rows] if named.plain.all() else None
 
     def matches(
         self, ids: Sequence[int], pattern: re.Pattern[bytes]
@@ -144,4 +172,5 @@ def make_step_table(data: bytes, scan: Scan) -> StepTable | None:
         plain[row[(row >= 0) & (at < scan.stops[row])]] = False
     if not plain.any():
         return None
-    return StepTable(data, scan.ids[plain], scan.starts[plain], scan.stops[plain])
+    columns = (scan.ids[plain], scan.starts[plain], scan.stops[plain])
+    return StepTable(data, *columns, hides=not plain.all())

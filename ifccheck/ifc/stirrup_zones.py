@@ -173,15 +173,17 @@ def _all_stirrups(model: Measured, places: Places, zones: Zones) -> Iterator[Sti
         return
     bounds = _extremes(places, zones)
     least, rows = bounds.least, places.ties.tolist()
-    bars = model.bar[places.ties].tolist()
     held = (places.first_tie[zones.first], places.first_tie[zones.last + 1])
+    names = model.names(model.bar[places.ties], *held)
     size = model.places.size[model.rows.strand[places.ties[places.first_tie[least]]]]
     stretch = (zones.start, zones.end, zones.spacing)
     legs = (places.diameter[least], places.area[least] / places.legs[least], places.legs[least])
     reach = (bounds.bottom, bounds.top, bounds.half_width)
     steel = (bounds.closed, size, bounds.lowest_grade, bounds.highest_grade)
     columns = (column.tolist() for column in (*stretch, *legs, *reach, *steel, *held))
-    for start, end, spacing, diameter, area, count, *more in zip(*columns, strict=True):
+    for name, start, end, spacing, diameter, area, count, *more in zip(
+        names, *columns, strict=True
+    ):
         bottom, top, half_width, closed, number, low, high, a, b = more
         yield Stirrups(
             start=start,
@@ -196,7 +198,7 @@ def _all_stirrups(model: Measured, places: Places, zones: Zones) -> Iterator[Sti
             top=top,
             half_width=half_width,
             designation=model.places.table.sizes[number].designation,
-            origin=model.names(bars[a:b]),
+            origin=name,
         )
 
 
