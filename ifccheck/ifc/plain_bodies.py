@@ -9,6 +9,7 @@ from __future__ import annotations
 import re
 from collections.abc import Sequence
 from dataclasses import dataclass
+from itertools import chain, islice
 
 import numpy as np
 
@@ -26,7 +27,7 @@ from ifccheck.ifc.profiles import Profiles
 from ifccheck.ifc.statement_patterns import (
     REFERENCE_OR_NOTHING,
     TEXT_OR_NOTHING,
-    numbers_of,
+    numbers_of_each,
     references,
     statement,
 )
@@ -156,10 +157,10 @@ def _combined(turns: Floats, ways: Floats) -> Floats:
 
 def _single_items(table: StepTable, shapes: Sequence[int]) -> Ints:
     """The only item of the body of each shape, 0 where that is not plain."""
-    held = [[] if match is None else numbers_of(match[1]) for match in table.matches(shapes, SHAPE)]
-    flat = [step_id for step_ids in held for step_id in step_ids]
-    matches = iter(table.matches(flat, REPRESENTATION))
-    return np.array([_body_item([next(matches) for _ in one]) for one in held], dtype=np.intp)
+    found = table.matches(shapes, SHAPE)
+    held = numbers_of_each([b"#0" if match is None else match[1] for match in found])
+    matches = iter(table.matches(list(chain.from_iterable(held)), REPRESENTATION))
+    return np.array([_body_item(list(islice(matches, len(one)))) for one in held], dtype=np.intp)
 
 
 def _body_item(representations: Sequence[re.Match[bytes] | None]) -> int:
@@ -167,8 +168,7 @@ def _body_item(representations: Sequence[re.Match[bytes] | None]) -> int:
         if match is None:
             return 0
         if match[1] == b"Body":
-            items = numbers_of(match[2])
-            return items[0] if len(items) == 1 else 0
+            return 0 if b"," in match[2] else int(match[2][1:])
     return 0
 
 

@@ -15,6 +15,7 @@ from ifccheck.ifc.statement_patterns import (
     TEXT,
     TEXT_OR_NOTHING,
     numbers_of,
+    numbers_of_each,
     references,
     statement,
 )
@@ -124,8 +125,7 @@ def read_relations(file: Any, statements: StepTable | None = None) -> Relations:
         by_class.setdefault(relation.is_a(), []).append(relation.id())
     for name, step_ids in by_class.items():
         if name in READERS:
-            for step_id in _left_of(found, statements, name, step_ids):
-                READERS[name](found, file.by_id(step_id))
+            _read_class(found, file, statements, name, step_ids)
     _read_type_sets(found, file)
     _read_material_properties(found, file)
     return Relations(
@@ -141,24 +141,29 @@ def read_relations(file: Any, statements: StepTable | None = None) -> Relations:
     )
 
 
-def _left_of(
-    found: _Gathering, statements: StepTable | None, name: str, step_ids: Sequence[int]
-) -> Sequence[int]:
-    """Read relationships of a class from their text; returns those that are not plain.
+def _read_class(
+    found: _Gathering, file: Any, statements: StepTable | None, name: str, step_ids: list[int]
+) -> None:
+    """Read the relationships of a class in their order, most from their text.
 
     Making an object of each of fifty thousand bars, to ask it for its id, takes as long as reading
     half of the beams.
     """
+    thorough = READERS[name]
     if statements is None or name not in PLAIN:
-        return step_ids
+        for step_id in step_ids:
+            thorough(found, file.by_id(step_id))
+        return
     pattern, add = PLAIN[name]
-    left: list[int] = []
-    for step_id, match in zip(step_ids, statements.matches(step_ids, pattern), strict=True):
+    matches = statements.matches(step_ids, pattern)
+    plain = [match.group("one", "many") for match in matches if match is not None]
+    related = iter(numbers_of_each([many for _, many in plain]))
+    relating = iter([int(one) for one, _ in plain])
+    for step_id, match in zip(step_ids, matches, strict=True):
         if match is None:
-            left.append(step_id)
+            thorough(found, file.by_id(step_id))
         else:
-            add(found, int(match["one"]), numbers_of(match["many"]))
-    return left
+            add(found, next(relating), next(related))
 
 
 def _keep_first(known: dict[int, int], elements: Sequence[int], one: int) -> None:

@@ -7,6 +7,8 @@ is written otherwise does not match, and is read through its entity.
 from __future__ import annotations
 
 import re
+from collections.abc import Sequence
+from itertools import accumulate
 
 import numpy as np
 
@@ -17,8 +19,6 @@ TEXT_OR_NOTHING = rb"(?:" + TEXT + rb"|\$)"
 REFERENCE_OR_NOTHING = rb"(?:#\d+|\$)"
 REFERENCE = rb"#(\d+)"
 """One reference; its number is a group."""
-LONG = 60
-"""Longer lists of numbers are read faster by numpy."""
 CLASS = rb"[A-Z][A-Z0-9_]*+"
 
 
@@ -37,10 +37,12 @@ def references(name: bytes = b"") -> bytes:
 
 def numbers_of(references: bytes) -> list[int]:
     """Return the numbers of the references in a list."""
-    if b"," not in references:
-        return [int(references[1:])]
-    numbers = references.replace(b"#", b"")
-    if len(numbers) < LONG:
-        return list(map(int, numbers.split(b",")))
-    found: list[int] = np.fromstring(numbers.decode("ascii"), dtype=np.int64, sep=",").tolist()
-    return found
+    return list(map(int, references.replace(b"#", b"").split(b",")))
+
+
+def numbers_of_each(lists: Sequence[bytes]) -> list[list[int]]:
+    """Return the numbers of the references in each of many lists."""
+    joined = b",".join(lists).replace(b"#", b"").decode("ascii")
+    flat: list[int] = np.fromstring(joined, dtype=np.int64, sep=",").tolist() if lists else []
+    stops = list(accumulate(one.count(b",") + 1 for one in lists))
+    return [flat[start:stop] for start, stop in zip([0, *stops], stops, strict=False)]
