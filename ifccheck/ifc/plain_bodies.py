@@ -220,9 +220,10 @@ def _units(table: StepTable, ids: Ints) -> Floats:
 def _figures(
     context: Context, profiles: Profiles, table: StepTable, areas: Ints
 ) -> dict[int, Profile]:
-    """Profiles by STEP id, those of one text read once; without those that cannot be read."""
+    """Profiles by STEP id, those of one text read once; without those that cannot be read, or
+    whose text is hidden."""
     distinct = np.unique(areas[areas > 0]).tolist()
-    by_text: dict[bytes, Profile | None] = {}
+    by_text: dict[bytes, Profile | None] = {b"": None}
     figures: dict[int, Profile] = {}
     for area, text in zip(distinct, table.texts(distinct), strict=True):
         if text not in by_text:

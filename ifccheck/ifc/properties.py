@@ -139,6 +139,8 @@ class Properties:
             return None
         step_ids = numbers_of(self._plain[set_id][2])
         texts = tuple(map(self._statements.text, step_ids))
+        if not all(texts):
+            return None  # what is hidden says nothing of being the same
         if texts not in self._by_texts:
             each = map(self._pairs, step_ids, texts)
             self._by_texts[texts] = dict(pair for pairs in each for pair in pairs)
@@ -146,7 +148,7 @@ class Properties:
 
     def _pairs(self, step_id: int, text: bytes) -> Pairs:
         """Names and values of a property; ``text`` is all of it but its number."""
-        if text not in self._by_text or not text:
+        if text not in self._by_text:
             self._by_text[text] = tuple(self._property(self._file.by_id(step_id), ""))
         return self._by_text[text]
 
