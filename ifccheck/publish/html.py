@@ -2,36 +2,30 @@
 
 from __future__ import annotations
 
-import base64
-import hashlib
 import math
-from collections import Counter
 from collections.abc import Iterable, Iterator, Mapping, Sequence
 from dataclasses import dataclass
 
 from markupsafe import Markup
 
-from ifccheck.beam import Combination, OutOfScope, Verdict
-from ifccheck.publish import tint
+from ifccheck.beam import Combination, Verdict
+from ifccheck.publish.page import MOST_NAMED, dress, figures, left_out
 from ifccheck.publish.plan import framing_plans
 from ifccheck.publish.report import Assumption, CaseSummary, Counts, Report
 from ifccheck.publish.rows import (
-    GAUGE,
-    GAUGE_END,
     Row,
     governing_titles,
     storeys_in_order,
     table_rows,
 )
 from ifccheck.publish.sheet_html import (
-    SHEETS_PER_BLOCK,
     Block,
     foot_line,
     packed,
     sheet_html,
 )
 from ifccheck.publish.svg import number
-from ifccheck.publish.templates import asset, template
+from ifccheck.publish.templates import template
 from ifccheck.publish.tint import BANDS
 from ifccheck.publish.words import (
     CAUTIONS,
@@ -41,19 +35,14 @@ from ifccheck.publish.words import (
 )
 
 WORST = 10
-MOST_NAMED = 12
-"""Marks named in a list before the rest are only counted."""
 
 
 def render(report: Report) -> str:
     """Return the summary as one HTML file."""
     rows = table_rows(report)
     numbers = {row.key: row.number for row in rows}
-    style, script = _style(), asset("page.js")
     return template("page.html.j2").render(
-        policy=_policy(style, script),
-        style=Markup(style),
-        script=Markup(script),
+        **dress(),
         model=report.model,
         title_block=_title_block(report),
         counts=report.counts,
@@ -62,7 +51,7 @@ def render(report: Report) -> str:
         covered=covered_phrases(report.ratings.values()),
         worst=[row for row in rows if row.utilisation][:WORST],
         cases=[_case(case, report, numbers) for case in report.cases],
-        plans=_plans(report, numbers),
+        plans=figures(framing_plans(report.model, report.ratings, numbers)),
         legend=[(name, words) for _, name, words in BANDS]
         + [("over", "falls short"), ("none", "not rated")],
         storeys=storeys_in_order(report),
@@ -70,7 +59,7 @@ def render(report: Report) -> str:
         governing=governing_titles(report),
         rows=rows,
         unrated=_unrated(report, rows),
-        out_of_scope=_out_of_scope(report.model.out_of_scope),
+        out_of_scope=left_out(report.model.out_of_scope),
         assumptions=[_assumption(a, report) for a in report.assumptions],
         doubts=[remark for remark in report.remarks if remark.kind == "doubt"],
         remarks=[remark for remark in report.remarks if remark.kind != "doubt"],
@@ -80,28 +69,7 @@ def render(report: Report) -> str:
         cautions=CAUTIONS,
         foot=foot_line(report),
         blocks=_blocks(report, rows),
-        sheets_per_block=SHEETS_PER_BLOCK,
     )
-
-
-def _policy(style: str, script: str) -> str:
-    """Nothing from anywhere, and of script and style only the very texts in the file."""
-    return (
-        f"default-src 'none'; script-src {_fingerprint(script)}; style-src {_fingerprint(style)};"
-        " base-uri 'none'; form-action 'none'"
-    )
-
-
-def _fingerprint(text: str) -> str:
-    digest = base64.b64encode(hashlib.sha256(text.encode()).digest()).decode("ascii")
-    return f"'sha256-{digest}'"
-
-
-def _style() -> str:
-    """The style sheet, with what it shares with the drawings and the table."""
-    widths = "".join(f".w{i}{{width:{i}px}}" for i in range(GAUGE + 1))
-    full = f":root{{--gauge:{GAUGE}px;--one:{GAUGE / GAUGE_END:.0f}px}}"
-    return tint.style() + full + widths + asset("page.css")
 
 
 def _title_block(report: Report) -> list[tuple[str, str]]:
@@ -195,22 +163,6 @@ def _case(case: CaseSummary, report: Report, numbers: Mapping[str, int]) -> _Cas
 
 
 @dataclass(frozen=True, slots=True)
-class _Plan:
-    storey: str
-    elevation: float | None
-    beams: int
-    not_drawn: tuple[str, ...]
-    svg: Markup
-
-
-def _plans(report: Report, numbers: Mapping[str, int]) -> list[_Plan]:
-    return [
-        _Plan(plan.storey, plan.elevation, plan.beams, plan.not_drawn, Markup(plan.svg))
-        for plan in framing_plans(report.model, report.ratings, numbers)
-    ]
-
-
-@dataclass(frozen=True, slots=True)
 class _Unrated:
     text: str
     cure: str
@@ -223,25 +175,6 @@ def _unrated(report: Report, rows: Sequence[Row]) -> list[_Unrated]:
     groups = reason_groups(report.ratings[row.key] for row in rows)
     return [
         _Unrated(group.text, group.cure, [by_key[key] for key in group.beams]) for group in groups
-    ]
-
-
-@dataclass(frozen=True, slots=True)
-class _OutOfScope:
-    reason: str
-    count: int
-    items: list[tuple[str, int]]
-
-
-def _out_of_scope(members: Iterable[OutOfScope]) -> list[_OutOfScope]:
-    groups: dict[str, Counter[str]] = {}
-    for member in members:
-        where = f", {member.storey}" if member.storey else ""
-        words = f"{member.name or member.guid}{where}: {member.evidence}"
-        groups.setdefault(member.reason, Counter())[words] += 1
-    return [
-        _OutOfScope(reason, found.total(), sorted(found.items()))
-        for reason, found in sorted(groups.items())
     ]
 
 
