@@ -86,17 +86,21 @@ def rate(models: tuple[Path, ...], brief: Path, out: Path, only: tuple[str, ...]
 
 
 @main.command()
-@click.argument("model", type=FILE)
-@click.option("--brief", type=FILE, help="The engineer's brief, for its property mapping.")
-def survey(model: Path, brief: Path | None) -> None:
-    """Show what a model holds and what a rating would lack."""
+@click.argument("models", nargs=-1, required=True, type=FILE, metavar="MODEL...")
+@click.option("--brief", type=FILE, help="The engineer's brief, where there is one already.")
+def survey(models: tuple[Path, ...], brief: Path | None) -> None:
+    """Show what models hold and what a rating would lack.
+
+    No brief is needed yet.
+    """
     from ifccheck import pipeline
-    from ifccheck.publish.terminal import survey_table
+    from ifccheck.publish.terminal_survey import survey_text
 
     with _progress() as say:
-        found = _guarded(lambda: pipeline.survey(model, brief, say))
+        surveys = _guarded(lambda: pipeline.survey(models, brief, say))
     console = _console()
-    console.print(survey_table(found.model, found.missing, console))
+    for each in surveys:
+        console.print(survey_text(each, console))
 
 
 @main.command()

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Collection, Mapping, Sequence
+from collections.abc import Callable, Collection, Sequence
 from dataclasses import dataclass
 from pathlib import Path
 
@@ -15,10 +15,12 @@ from ifccheck.brief.merging import Matches
 from ifccheck.brief.model import Brief, ScheduleRow
 from ifccheck.brief.schedule import read_schedule
 from ifccheck.brief.selecting import Found, check_reached, join, selections
+from ifccheck.brief.silent import silent_brief
 from ifccheck.brief.zones import schedule_remarks, with_schedule
 from ifccheck.errors import BriefError, ModelError, UsageError
 from ifccheck.ifc.opening import OpenedModel, open_model
 from ifccheck.ifc.reader import read_model
+from ifccheck.ifc.requirement import unmet_requirements
 from ifccheck.ifc.selection import select
 from ifccheck.ifc.step_table import make_step_table
 from ifccheck.memory import uncollected
@@ -29,6 +31,7 @@ from ifccheck.sheet import Sheet
 from ifccheck.standards import Options, Standard
 from ifccheck.standards.discovery import all_standards, find_standard
 from ifccheck.subjects import Gathered, gather
+from ifccheck.survey import Survey
 
 Say = Callable[[str], None]
 
@@ -84,14 +87,6 @@ class Run:
         """0 where every beam in scope is adequate and there is at least one, else 3."""
         verdicts = [r.verdict for report in self.reports for r in report.ratings.values()]
         return 0 if verdicts and set(verdicts) == {Verdict.ADEQUATE} else 3
-
-
-@dataclass(frozen=True)
-class Survey:
-    """What a model holds, and what a rating of each beam would lack."""
-
-    model: Model
-    missing: Mapping[str, tuple[str, ...]]
 
 
 @uncollected()
@@ -202,12 +197,7 @@ def find_beams(read: Read, plan: Plan) -> Found:
 
 def rate_model(read: Read, matches: Matches, plan: Plan, found: Sequence[Found], say: Say) -> Rated:
     """Rate one model: gather what each beam rests on, then all of them on arrays."""
-    say(f"gathering loads and supports of {read.model.file_name}")
-    beams = {beam.key: beam for beam in read.model.beams}
-    model = results.with_beams(
-        read.model, tuple(with_schedule(plan.schedule, matches, beams).values())
-    )
-    gathered = gather(model, plan.brief, matches, plan.standard)
+    model, gathered = gather_model(read, matches, plan, say)
     say(f"rating {read.model.file_name}")
     rated = tuple(
         batches(gathered.subjects, plan.standard, plan.options, plan.cases, plan.combinations)
@@ -224,6 +214,16 @@ def rate_model(read: Read, matches: Matches, plan: Plan, found: Sequence[Found],
         combinations=plan.combinations, actions=plan.actions,
     )  # fmt: skip
     return Rated(read, gathered, rated, report)
+
+
+def gather_model(read: Read, matches: Matches, plan: Plan, say: Say) -> tuple[Model, Gathered]:
+    """Join one model with the brief and its schedule: what each beam rests on."""
+    say(f"gathering loads and supports of {read.model.file_name}")
+    beams = {beam.key: beam for beam in read.model.beams}
+    model = results.with_beams(
+        read.model, tuple(with_schedule(plan.schedule, matches, beams).values())
+    )
+    return model, gather(model, plan.brief, matches, plan.standard)
 
 
 @uncollected()
@@ -254,11 +254,46 @@ def output_name(path: Path) -> str:
     return path.stem.removesuffix("-rated")
 
 
-def survey(model: Path, brief_path: Path | None, say: Say = lambda _: None) -> Survey:
-    """Tell what a model holds and what a rating would lack."""
-    brief = load_brief(brief_path) if brief_path else None
-    read = read_models([model], brief, say)[0]
-    return Survey(read.model, results.missing_of(read.model))
+@uncollected()
+def survey(
+    models: Sequence[Path], brief_path: Path | None = None, say: Say = lambda _: None
+) -> tuple[Survey, ...]:
+    """Tell what models hold and what a rating would lack, with a brief or before there is one."""
+    plan = make_plan(brief_path) if brief_path else silent_plan()
+    return tuple(_survey(read, plan, say) for read in read_models(models, plan.brief, say))
+
+
+def silent_plan() -> Plan:
+    """The plan of an engineer who has said nothing yet, by the first standard that loads."""
+    usable = [each for _, each in all_standards() if isinstance(each, Standard)]
+    if not usable:
+        raise UsageError("no standard is installed that can be loaded: see ifccheck standards")
+    standard = usable[0]
+    return Plan(
+        brief=silent_brief(standard.id),
+        standard=standard,
+        options=Options(standard.shear_methods[0]),
+        cases=(),
+        combinations=(),
+        actions="",
+        remarks=(),
+        schedule=(),
+    )
+
+
+def _survey(read: Read, plan: Plan, say: Say) -> Survey:
+    matches = join(plan.brief, plan.schedule, find_beams(read, plan))
+    model, gathered = gather_model(read, matches, plan, say)
+    say(f"holding {model.file_name} against the information requirement")
+    briefed = bool(plan.brief.file_name)
+    unmet = unmet_requirements(read.opened, model.beams)
+    return Survey(
+        version=__version__,
+        model=model,
+        findings=results.findings_of(model, gathered, unmet, briefed=briefed),
+        brief_name=plan.brief.file_name,
+        brief_sha256=plan.brief.sha256,
+    )
 
 
 def sheets(

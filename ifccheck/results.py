@@ -8,15 +8,18 @@ from dataclasses import replace
 from pathlib import Path
 from typing import TYPE_CHECKING
 
-from ifccheck.beam import Beam, Case, Combination, Model, Remark
+from ifccheck.beam import Beam, Case, Combination, Model, Reason, Remark
 from ifccheck.brief.model import Brief
 from ifccheck.publish.report import Assumption, CaseSummary, Report
+from ifccheck.publish.words import CURES, NO_LOAD, head_of
 from ifccheck.rating.answers import ratings_of, unrated
 from ifccheck.rating.batch import Batch
 from ifccheck.rating.results import Rating
+from ifccheck.rating.subject import Subject, Unrated
 from ifccheck.sheet import Sheet, bare_sheet, sheet_maker
 from ifccheck.standards import Options, Standard
 from ifccheck.subjects import Gathered
+from ifccheck.survey import Finding
 
 if TYPE_CHECKING:
     from ifccheck.ifc.opening import OpenedModel
@@ -184,18 +187,26 @@ def files_of(
     return files
 
 
-def missing_of(model: Model) -> dict[str, tuple[str, ...]]:
-    """What a rating of each beam would lack, as far as the model alone can tell."""
-    return {beam.key: tuple(_missing(beam)) for beam in model.beams}
+def findings_of(
+    model: Model, gathered: Gathered, unmet: Mapping[str, tuple[str, ...]], *, briefed: bool
+) -> dict[str, Finding]:
+    """What a rating of each beam would lack, by key; ``briefed``: the brief is the engineer's."""
+    gathered_all: list[Subject | Unrated] = [*gathered.subjects, *gathered.unrated]
+    known = {each.beam.key: (each.reasons, each.remarks) for each in gathered_all}
+    return {
+        beam.key: _finding(*known[beam.key], unmet.get(beam.key, ()), briefed=briefed)
+        for beam in model.beams
+    }
 
 
-def _missing(beam: Beam) -> Iterable[str]:
-    yield from (reason.text for reason in beam.reasons)
-    if beam.strength_reason is not None:
-        yield beam.strength_reason.text
-    elif beam.concrete_strength is None:
-        yield "concrete strength"
-    if not beam.reinforcement:
-        yield "reinforcement"
-    for source in beam.reinforcement:
-        yield from (reason.text for reason in source.reasons)
+def _finding(
+    reasons: Sequence[Reason], remarks: Sequence[Remark], unmet: tuple[str, ...], *, briefed: bool
+) -> Finding:
+    texts = [each.text for each in reasons if briefed or each.text != NO_LOAD]
+    to_state = [text for text in texts if head_of(text) in CURES]
+    return Finding(
+        lacks=tuple(text for text in texts if text not in to_state),
+        to_state=tuple(to_state),
+        doubts=tuple(dict.fromkeys(each.text for each in remarks if each.kind == "doubt")),
+        unmet=unmet,
+    )

@@ -109,14 +109,24 @@ def factor_words(factor: float) -> str:
     return "not limited" if math.isinf(factor) else show_ratio(factor)
 
 
+NO_LOAD = "no load assigned"
+
 CURES = {
     "reactions not included": "put what rests on them in the loads, then write loads_complete ="
     " true under [[beams]]",
-    "no load assigned": "reach them with an entry of [[loads]], or write unloaded = true under"
-    " [[beams]]",
+    NO_LOAD: "reach them with an entry of [[loads]], or write unloaded = true under [[beams]]",
     "supports unknown": "write an entry of [[supports]] that names them",
 }
 """What lets a beam be rated, for reasons that the brief can settle; by the words before ":"."""
+
+
+def head_of(text: str) -> str:
+    """Return the words of a reason before what it names.
+
+    >>> head_of("reactions not included: T-111 (IfcBeam)")
+    'reactions not included'
+    """
+    return text.partition(":")[0]
 
 
 NAMED = 3
@@ -138,7 +148,7 @@ def reason_groups(ratings: Iterable[Rating]) -> list[ReasonGroup]:
     found: dict[str, dict[str, list[str]]] = {}
     for rating in ratings:
         for reason in rating.reasons:
-            head = reason.text.partition(":")[0]
+            head = head_of(reason.text)
             group = head if head in CURES else reason.text
             found.setdefault(group, {}).setdefault(reason.text, []).append(rating.beam)
     groups = [_reason_group(group, texts) for group, texts in found.items()]
