@@ -36,9 +36,9 @@ def survey(
 
     Nothing is written. Raises ``ifccheck.errors.IfccheckError`` with one line for people.
     """
-    from ifccheck import pipeline
+    from ifccheck import surveying
     from ifccheck.tables import survey_frame
 
     paths = [models] if isinstance(models, str | Path) else list(models)
-    found = pipeline.survey([Path(path) for path in paths], Path(brief) if brief else None)
+    found = surveying.survey([Path(path) for path in paths], Path(brief) if brief else None)
     return survey_frame(found)

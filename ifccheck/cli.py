@@ -88,19 +88,26 @@ def rate(models: tuple[Path, ...], brief: Path, out: Path, only: tuple[str, ...]
 @main.command()
 @click.argument("models", nargs=-1, required=True, type=FILE, metavar="MODEL...")
 @click.option("--brief", type=FILE, help="The engineer's brief, where there is one already.")
-def survey(models: tuple[Path, ...], brief: Path | None) -> None:
+@click.option("--out", type=FILE, help="Folder for a page of each model.")
+def survey(models: tuple[Path, ...], brief: Path | None, out: Path | None) -> None:
     """Show what models hold and what a rating would lack.
 
     No brief is needed yet.
     """
-    from ifccheck import pipeline
+    from ifccheck import surveying
     from ifccheck.publish.terminal_survey import survey_text
 
-    with _progress() as say:
-        surveys = _guarded(lambda: pipeline.survey(models, brief, say))
     console = _console()
+    with _progress() as say:
+        surveys = _guarded(lambda: surveying.survey(models, brief, say))
+        inputs = [*models, *([brief] if brief else [])]
+        written = (
+            _guarded(lambda: surveying.publish_surveys(surveys, out, inputs, say)) if out else ()
+        )
     for each in surveys:
         console.print(survey_text(each, console))
+    for path in written:
+        console.print(f"  {path}", soft_wrap=True)
 
 
 @main.command()

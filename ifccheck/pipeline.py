@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Collection, Sequence
+from collections.abc import Callable, Collection, Iterable, Mapping, Sequence
 from dataclasses import dataclass
 from pathlib import Path
 
@@ -15,12 +15,10 @@ from ifccheck.brief.merging import Matches
 from ifccheck.brief.model import Brief, ScheduleRow
 from ifccheck.brief.schedule import read_schedule
 from ifccheck.brief.selecting import Found, check_reached, join, selections
-from ifccheck.brief.silent import silent_brief
 from ifccheck.brief.zones import schedule_remarks, with_schedule
 from ifccheck.errors import BriefError, ModelError, UsageError
 from ifccheck.ifc.opening import OpenedModel, open_model
 from ifccheck.ifc.reader import read_model
-from ifccheck.ifc.requirement import unmet_requirements
 from ifccheck.ifc.selection import select
 from ifccheck.ifc.step_table import make_step_table
 from ifccheck.memory import uncollected
@@ -31,7 +29,6 @@ from ifccheck.sheet import Sheet
 from ifccheck.standards import Options, Standard
 from ifccheck.standards.discovery import all_standards, find_standard
 from ifccheck.subjects import Gathered, gather
-from ifccheck.survey import Survey
 
 Say = Callable[[str], None]
 
@@ -238,62 +235,24 @@ def publish(
         made = results.files_of(rated.read.opened, rated.report, out, only)
         written[rated.report.model.file_name] = tuple(made)
         files.update(made)
-    sources = {rated.read.opened.path.resolve() for rated in run.rated}
-    sources |= {run.plan.brief.path.resolve()}
+    write_beside(files, [*(rated.read.opened.path for rated in run.rated), run.plan.brief.path])
+    return written
+
+
+def write_beside(files: Mapping[Path, bytes], inputs: Iterable[Path]) -> None:
+    """Write files, all of them or none, and none of them over an input."""
+    sources = {path.resolve() for path in inputs}
     if overwritten := sources & {path.resolve() for path in files}:
         raise UsageError(
             f"{sorted(overwritten)[0]}: a result would overwrite an input; name another folder"
             " with --out"
         )
     write_all(files)
-    return written
 
 
 def output_name(path: Path) -> str:
     """Stem of the results of a model; a trailing ``-rated`` is not repeated."""
     return path.stem.removesuffix("-rated")
-
-
-@uncollected()
-def survey(
-    models: Sequence[Path], brief_path: Path | None = None, say: Say = lambda _: None
-) -> tuple[Survey, ...]:
-    """Tell what models hold and what a rating would lack, with a brief or before there is one."""
-    plan = make_plan(brief_path) if brief_path else silent_plan()
-    return tuple(_survey(read, plan, say) for read in read_models(models, plan.brief, say))
-
-
-def silent_plan() -> Plan:
-    """The plan of an engineer who has said nothing yet, by the first standard that loads."""
-    usable = [each for _, each in all_standards() if isinstance(each, Standard)]
-    if not usable:
-        raise UsageError("no standard is installed that can be loaded: see ifccheck standards")
-    standard = usable[0]
-    return Plan(
-        brief=silent_brief(standard.id),
-        standard=standard,
-        options=Options(standard.shear_methods[0]),
-        cases=(),
-        combinations=(),
-        actions="",
-        remarks=(),
-        schedule=(),
-    )
-
-
-def _survey(read: Read, plan: Plan, say: Say) -> Survey:
-    matches = join(plan.brief, plan.schedule, find_beams(read, plan))
-    model, gathered = gather_model(read, matches, plan, say)
-    say(f"holding {model.file_name} against the information requirement")
-    briefed = bool(plan.brief.file_name)
-    unmet = unmet_requirements(read.opened, model.beams)
-    return Survey(
-        version=__version__,
-        model=model,
-        findings=results.findings_of(model, gathered, unmet, briefed=briefed),
-        brief_name=plan.brief.file_name,
-        brief_sha256=plan.brief.sha256,
-    )
 
 
 def sheets(

@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Mapping
 from dataclasses import dataclass
 from enum import StrEnum
+from pathlib import Path
 
 from ifccheck.beam import Beam, Model
 
@@ -13,7 +14,7 @@ class State(StrEnum):
     """How far the model and the brief tell what a rating needs of a beam."""
 
     INCOMPLETE = "incomplete"
-    DOUBTFUL = "doubtful"
+    DOUBTFUL = "doubts only"
     COMPLETE = "nothing missing"
 
 
@@ -42,6 +43,7 @@ class Survey:
     """What one model holds."""
 
     version: str
+    path: Path
     model: Model
     findings: Mapping[str, Finding]
     """By key of the beam"""

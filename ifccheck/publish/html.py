@@ -9,13 +9,13 @@ from dataclasses import dataclass
 from markupsafe import Markup
 
 from ifccheck.beam import Combination, Verdict
-from ifccheck.publish.page import MOST_NAMED, dress, figures, left_out
+from ifccheck.publish.page import MOST_NAMED, Tally, dress, figures, left_out, proportion
 from ifccheck.publish.plan import framing_plans
 from ifccheck.publish.report import Assumption, CaseSummary, Counts, Report
 from ifccheck.publish.rows import (
     Row,
     governing_titles,
-    storeys_in_order,
+    storey_names,
     table_rows,
 )
 from ifccheck.publish.sheet_html import (
@@ -24,7 +24,6 @@ from ifccheck.publish.sheet_html import (
     packed,
     sheet_html,
 )
-from ifccheck.publish.svg import number
 from ifccheck.publish.templates import template
 from ifccheck.publish.tint import BANDS
 from ifccheck.publish.words import (
@@ -41,20 +40,21 @@ def render(report: Report) -> str:
     """Return the summary as one HTML file."""
     rows = table_rows(report)
     numbers = {row.key: row.number for row in rows}
+    tallies = _tallies(report.counts)
     return template("page.html.j2").render(
         **dress(),
         model=report.model,
         title_block=_title_block(report),
         counts=report.counts,
-        tallies=_tallies(report.counts),
-        proportion=Markup(_proportion(report.counts)),
+        tallies=tallies,
+        proportion=Markup(proportion([(t.swatch, t.count) for t in tallies[:-1]])),
         covered=covered_phrases(report.ratings.values()),
         worst=[row for row in rows if row.utilisation][:WORST],
         cases=[_case(case, report, numbers) for case in report.cases],
         plans=figures(framing_plans(report.model, report.ratings, numbers)),
         legend=[(name, words) for _, name, words in BANDS]
         + [("over", "falls short"), ("none", "not rated")],
-        storeys=storeys_in_order(report),
+        storeys=storey_names(report.model),
         verdicts=[str(verdict) for verdict in Verdict],
         governing=governing_titles(report),
         rows=rows,
@@ -98,37 +98,13 @@ def _sources(report: Report) -> list[tuple[str, str]]:
     ]
 
 
-@dataclass(frozen=True, slots=True)
-class _Tally:
-    kind: str
-    swatch: str
-    count: int
-    words: str
-
-
-def _tallies(counts: Counts) -> list[_Tally]:
+def _tallies(counts: Counts) -> list[Tally]:
     return [
-        _Tally("falls-short", "over", counts.falls_short, "falls short"),
-        _Tally("not-rated", "none", counts.not_rated, "not rated"),
-        _Tally("adequate", "u3", counts.adequate, "adequate"),
-        _Tally("out", "out", counts.out_of_scope, "out of scope"),
+        Tally("falls-short", "over", counts.falls_short, "falls short"),
+        Tally("not-rated", "none", counts.not_rated, "not rated"),
+        Tally("adequate", "u3", counts.adequate, "adequate"),
+        Tally("out", "out", counts.out_of_scope, "out of scope"),
     ]
-
-
-def _proportion(counts: Counts) -> str:
-    """The beams in scope as one bar."""
-    parts, left = [], 0.0
-    kinds = (("over", counts.falls_short), ("none", counts.not_rated), ("u3", counts.adequate))
-    for kind, count in kinds:
-        width = 600.0 * count / max(counts.in_scope, 1)
-        if count:
-            parts.append(
-                f'<rect class="{kind} part" x="{number(left)}" y="1" width="{number(width)}"'
-                ' height="12"/>'
-            )
-        left += width
-    shape = 'viewBox="0 0 600 14" preserveAspectRatio="none"'
-    return f'<svg class="proportion" {shape} aria-hidden="true">{"".join(parts)}</svg>'
 
 
 @dataclass(frozen=True, slots=True)

@@ -5,7 +5,7 @@ from __future__ import annotations
 import base64
 import hashlib
 from collections import Counter
-from collections.abc import Iterable
+from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
 from typing import Any
 
@@ -16,6 +16,7 @@ from ifccheck.publish import tint
 from ifccheck.publish.plan import Plan
 from ifccheck.publish.rows import GAUGE, GAUGE_END
 from ifccheck.publish.sheet_html import SHEETS_PER_BLOCK
+from ifccheck.publish.svg import number
 from ifccheck.publish.templates import asset
 
 MOST_NAMED = 12
@@ -51,6 +52,31 @@ def _style() -> str:
     widths = "".join(f".w{i}{{width:{i}px}}" for i in range(GAUGE + 1))
     full = f":root{{--gauge:{GAUGE}px;--one:{GAUGE / GAUGE_END:.0f}px}}"
     return tint.style() + full + widths + asset("page.css")
+
+
+@dataclass(frozen=True, slots=True)
+class Tally:
+    """A number of beams of one kind, with the swatch that the plans tint them by."""
+
+    kind: str
+    swatch: str
+    count: int
+    words: str
+
+
+def proportion(parts: Sequence[tuple[str, int]]) -> str:
+    """Return the beams in scope as one bar, each part with its class and number."""
+    of, left, drawn = max(sum(count for _, count in parts), 1), 0.0, []
+    for kind, count in parts:
+        width = 600.0 * count / of
+        if count:
+            drawn.append(
+                f'<rect class="{kind} part" x="{number(left)}" y="1" width="{number(width)}"'
+                ' height="12"/>'
+            )
+        left += width
+    shape = 'viewBox="0 0 600 14" preserveAspectRatio="none"'
+    return f'<svg class="proportion" {shape} aria-hidden="true">{"".join(drawn)}</svg>'
 
 
 @dataclass(frozen=True, slots=True)

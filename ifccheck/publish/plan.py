@@ -57,9 +57,11 @@ class Look:
     told: str
     """Said when it is pointed at"""
     words: str = ""
-    """Beside its mark"""
+    """With its mark"""
     always: bool = False
     """Whether the words are shown even where they lie over other beams"""
+    more: tuple[str, ...] = ()
+    """Said once all marks stand: the first that still finds room"""
 
 
 @dataclass(frozen=True, slots=True)
@@ -322,6 +324,9 @@ def _marks(shapes: Sequence[_Shape], sheet: _Sheet, looks: Mapping[str, Look]) -
     for shape in reversed(shapes):
         look, stroke = looks[shape.beam.key], strokes[shape.beam.key]
         yield labels.set(stroke, plain(shape.beam.mark), look.words, always=look.always)
+    for shape in reversed(shapes):
+        more = [plain(text) for text in looks[shape.beam.key].more]
+        yield labels.add(strokes[shape.beam.key], more)
 
 
 def _scale_bar(sheet: _Sheet) -> str:

@@ -3,15 +3,14 @@
 from __future__ import annotations
 
 import re
-from collections.abc import Iterable, Sequence
+from collections.abc import Iterable
 from dataclasses import dataclass
 
-from ifccheck.beam import Beam, DescribedZone, Reinforcement
+from ifccheck.beam import Beam, DescribedZone
 from ifccheck.notation import show_bars, show_stirrups
-from ifccheck.publish.elevation import bar_words, stirrup_words
 from ifccheck.publish.quantities import quantity_words
 from ifccheck.publish.words import NO_LOAD, head_of
-from ifccheck.survey import Finding, Survey
+from ifccheck.survey import Finding, State, Survey
 
 STATES = {
     "supports unknown": "supports",
@@ -19,6 +18,8 @@ STATES = {
     NO_LOAD: "loads",
 }
 """What the brief must still state, by the head of the reason."""
+
+_BANDS = {State.INCOMPLETE: "none", State.DOUBTFUL: "u1", State.COMPLETE: "u3"}
 
 SETTLED = {
     "concrete strength unknown": "defaults.concrete_strength in the brief, or an entry of"
@@ -42,6 +43,11 @@ class Told:
     text: str
     beams: tuple[str, ...]
     """Keys"""
+
+
+def state_band(state: State) -> str:
+    """Return the class that a beam is tinted with: hatched where a rating could not be made."""
+    return _BANDS[state]
 
 
 def lack_words(text: str) -> str:
@@ -110,12 +116,6 @@ def source_words(beam: Beam) -> str:
     return ", ".join(each.source for each in beam.reinforcement) or "none"
 
 
-def steel_words(source: Reinforcement) -> list[str]:
-    """Return what one source says of the steel, each piece in the words of a drawing."""
-    placed = [*map(bar_words, source.bars), *map(stirrup_words, source.stirrups)]
-    return [*placed, *(text for zone in source.zones for text in zone_words(zone))]
-
-
 def zone_words(zone: DescribedZone) -> list[str]:
     """Return the reinforcement that a zone describes: "top 3-25M"."""
     faces = (("top", zone.top), ("bottom", zone.bottom), ("side", zone.side))
@@ -127,13 +127,3 @@ def zone_words(zone: DescribedZone) -> list[str]:
     if zone.cover is not None:
         words.append(f"cover {quantity_words(zone.cover, 'dimension')}")
     return words
-
-
-def named(beams: Sequence[str], most: int) -> str:
-    """Return marks as a phrase; the rest is counted.
-
-    >>> named(["B-1", "B-2", "B-3"], 2)
-    'B-1, B-2 and 1 more'
-    """
-    more = len(beams) - most
-    return ", ".join(beams[:most]) + (f" and {more} more" if more > 0 else "")

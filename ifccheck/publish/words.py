@@ -32,6 +32,15 @@ CAUTIONS = (
     " from it, and no load may be put on it on the strength of this summary.",
 )
 
+CAUTIONS_OF_A_SURVEY = (
+    "This page is an aid for a licensed engineer. It rates nothing: that nothing is missing of a"
+    " beam says nothing of what the beam can carry.",
+    "It tells what the program read, which may differ from what the modeller meant and from what"
+    " was built. Compare it with the drawings and the structure.",
+    "What is doubtful is used all the same where a rule decides it on the safe side; the sheet of"
+    " the rating says how.",
+)
+
 
 def plain(text: str) -> str:
     """Return a text on one line that can be shown anywhere: what cannot be shown becomes U+FFFD.
@@ -68,8 +77,11 @@ def section_words(beam: Beam) -> str:
 
 
 def _outline_words(outline: Outline) -> str:
-    if outline.name:
-        return outline.name
+    return outline.name or outline_size(outline)
+
+
+def outline_size(outline: Outline) -> str:
+    """Return the greatest width and height of an outline [mm]."""
     ys, zs = zip(*outline.rings[0], strict=True)
     return f"{max(ys) - min(ys):.0f} × {max(zs) - min(zs):.0f}"
 
