@@ -41,4 +41,4 @@ def survey(
 
     paths = [models] if isinstance(models, str | Path) else list(models)
     found = surveying.survey([Path(path) for path in paths], Path(brief) if brief else None)
-    return survey_frame(found)
+    return survey_frame(each.survey for each in found)

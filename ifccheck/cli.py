@@ -88,26 +88,49 @@ def rate(models: tuple[Path, ...], brief: Path, out: Path, only: tuple[str, ...]
 @main.command()
 @click.argument("models", nargs=-1, required=True, type=FILE, metavar="MODEL...")
 @click.option("--brief", type=FILE, help="The engineer's brief, where there is one already.")
-@click.option("--out", type=FILE, help="Folder for a page of each model.")
-def survey(models: tuple[Path, ...], brief: Path | None, out: Path | None) -> None:
+@click.option("--out", type=FILE, help="Folder for a page of each model, <model>-survey.html.")
+@click.option("--starter", type=FILE, help="A new file for a brief to start from (TOML).")
+def survey(
+    models: tuple[Path, ...], brief: Path | None, out: Path | None, starter: Path | None
+) -> None:
     """Show what models hold and what a rating would lack.
 
-    No brief is needed yet.
+    Tells for each group of beams what was read, what is missing for a rating and what is
+    doubtful. No brief is needed yet: --starter writes one with the marks, storeys, materials and
+    property sets of the models, ready to fill in. With --brief, what the brief settles is not
+    missing. The exit status is 0 where the models could be read.
     """
     from ifccheck import surveying
+    from ifccheck.outputs import refuse_existing
     from ifccheck.publish.terminal_survey import survey_text
 
-    console = _console()
+    inputs = [*models, *([brief] if brief else [])]
     with _progress() as say:
-        surveys = _guarded(lambda: surveying.survey(models, brief, say))
-        inputs = [*models, *([brief] if brief else [])]
-        written = (
-            _guarded(lambda: surveying.publish_surveys(surveys, out, inputs, say)) if out else ()
+        if starter:
+            _guarded(lambda: refuse_existing(starter))  # before the models are read
+        found = _guarded(lambda: surveying.survey(models, brief, say))
+        written = _guarded(
+            lambda: surveying.publish(found, inputs, out=out, starter=starter, say=say)
         )
-    for each in surveys:
-        console.print(survey_text(each, console))
+    console = _console()
+    for each in found:
+        console.print(survey_text(each.survey, console))
     for path in written:
         console.print(f"  {path}", soft_wrap=True)
+
+
+@main.command()
+@click.argument("file", type=FILE)
+def requirement(file: Path) -> None:
+    """Write to FILE what a modeller must give of a beam (IDS 1.0).
+
+    A file that exists already is left as it is. What survey says of the information requirement
+    is held against the same text.
+    """
+    from ifccheck import surveying
+
+    _guarded(lambda: surveying.write_requirement(file))
+    _console().print(f"  {file}", soft_wrap=True)
 
 
 @main.command()

@@ -5,7 +5,6 @@ from __future__ import annotations
 from collections.abc import Mapping
 from dataclasses import dataclass
 from enum import StrEnum
-from pathlib import Path
 
 from ifccheck.beam import Beam, Model
 
@@ -38,12 +37,24 @@ class Finding:
         return State.DOUBTFUL if self.doubts else State.COMPLETE
 
 
+@dataclass(frozen=True, slots=True)
+class PropertySeen:
+    """A property of the project's own that may tell of reinforcement."""
+
+    field: str
+    """Of the brief's mapping: top, bottom, stirrups, ..."""
+    place: str
+    """ "Set.Property" """
+    example: str
+    beams: int
+    """Number of beams that have it"""
+
+
 @dataclass(frozen=True)
 class Survey:
     """What one model holds."""
 
     version: str
-    path: Path
     model: Model
     findings: Mapping[str, Finding]
     """By key of the beam"""

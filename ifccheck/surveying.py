@@ -3,14 +3,20 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Sequence
+from dataclasses import dataclass
 from pathlib import Path
 
 from ifccheck import __version__, results
 from ifccheck.brief.selecting import join
 from ifccheck.brief.silent import silent_brief
-from ifccheck.errors import UsageError
-from ifccheck.ifc.requirement import unmet_requirements
+from ifccheck.brief.starter import StarterModel, quoted, starter_brief
+from ifccheck.errors import BriefError, UsageError
+from ifccheck.frame.carrying import contacts_of, unheld_ends
+from ifccheck.ifc.requirement import requirement_bytes, unmet_requirements
+from ifccheck.ifc.selection import select
+from ifccheck.ifc.suggestions import properties_of_steel
 from ifccheck.memory import uncollected
+from ifccheck.outputs import refuse_existing, write_new
 from ifccheck.pipeline import (
     Plan,
     Read,
@@ -22,19 +28,29 @@ from ifccheck.pipeline import (
     read_models,
     write_beside,
 )
+from ifccheck.publish.words import head_of
 from ifccheck.standards import Options, Standard
 from ifccheck.standards.discovery import all_standards
 from ifccheck.survey import Survey
 
 
+@dataclass(frozen=True)
+class Surveyed:
+    """One model as it was read, with its survey."""
+
+    read: Read
+    survey: Survey
+
+
 @uncollected()
 def survey(
     models: Sequence[Path], brief_path: Path | None = None, say: Say = lambda _: None
-) -> tuple[Survey, ...]:
+) -> tuple[Surveyed, ...]:
     """Tell what models hold and what a rating would lack, with a brief or before there is one."""
     plan = make_plan(brief_path) if brief_path else silent_plan()
     brief = plan.brief if brief_path else None
-    return tuple(_survey(read, plan, say) for read in read_models(models, brief, say))
+    reads = read_models(models, brief, say)
+    return tuple(Surveyed(read, _survey(read, plan, say)) for read in reads)
 
 
 def silent_plan() -> Plan:
@@ -63,7 +79,6 @@ def _survey(read: Read, plan: Plan, say: Say) -> Survey:
     unmet = unmet_requirements(read.opened, model.beams)
     return Survey(
         version=__version__,
-        path=read.opened.path,
         model=model,
         findings=results.findings_of(model, gathered, unmet, briefed=briefed),
         brief_name=plan.brief.file_name,
@@ -72,16 +87,75 @@ def _survey(read: Read, plan: Plan, say: Say) -> Survey:
 
 
 @uncollected()
-def publish_surveys(
-    surveys: Iterable[Survey], out: Path, inputs: Iterable[Path], say: Say = lambda _: None
+def publish(
+    surveyed: Sequence[Surveyed],
+    inputs: Iterable[Path],
+    *,
+    out: Path | None = None,
+    starter: Path | None = None,
+    say: Say = lambda _: None,
 ) -> tuple[Path, ...]:
-    """Write the page of each survey, all of them or none; return the paths."""
+    """Write a page of each survey and a brief to start from, where asked, all of them or none.
+
+    Nothing is written over an input, and no brief over a file that stands already. Returns the
+    paths.
+    """
+    files = _pages(surveyed, out, say) if out else {}
+    if starter:
+        refuse_existing(starter)
+        say(f"writing {starter.name}")
+        files[starter] = _starter(surveyed).encode("utf-8")
+    write_beside(files, inputs)
+    return tuple(files)
+
+
+def _pages(surveyed: Iterable[Surveyed], out: Path, say: Say) -> dict[Path, bytes]:
     from ifccheck.publish.survey_html import render_survey
 
     files: dict[Path, bytes] = {}
-    for each in surveys:
-        say(f"publishing the survey of {each.model.file_name}")
-        page = render_survey(each).encode("utf-8")
-        files[out / f"{output_name(each.path)}-survey.html"] = page
-    write_beside(files, inputs)
-    return tuple(files)
+    for each in surveyed:
+        say(f"publishing the survey of {each.survey.model.file_name}")
+        page = render_survey(each.survey).encode("utf-8")
+        files[out / f"{output_name(each.read.opened.path)}-survey.html"] = page
+    return files
+
+
+def _starter(surveyed: Iterable[Surveyed]) -> str:
+    known = [name for name, each in all_standards() if isinstance(each, Standard)]
+    return starter_brief([_starter_model(each) for each in surveyed], known)
+
+
+def _starter_model(surveyed: Surveyed) -> StarterModel:
+    opened, model = surveyed.read.opened, surveyed.survey.model
+    contacts = contacts_of(model, {})
+    unknown = {
+        key
+        for key, finding in surveyed.survey.findings.items()
+        if any(head_of(text) == "supports unknown" for text in finding.to_state)
+    }
+    return StarterModel(
+        survey=surveyed.survey,
+        loose_ends={key: unheld_ends(contacts.get(key, ())) for key in unknown},
+        storey_queries=_storey_queries(surveyed.read),
+        properties=properties_of_steel(opened, model.beams),
+    )
+
+
+def _storey_queries(read: Read) -> dict[str, str]:
+    """A query for each storey, where it is found to reach the beams of that storey alone."""
+    queries: dict[str, str] = {}
+    for storey in dict.fromkeys(beam.storey for beam in read.model.beams):
+        query = f"IfcBeam, location={quoted(storey)}"
+        wanted = tuple(beam.key for beam in read.model.beams if beam.storey == storey)
+        try:
+            found = select(read.opened, read.model.beams, None, query)
+        except BriefError:
+            continue  # no query says the name of this storey: its beams are listed
+        if storey and found == wanted:
+            queries[storey] = query
+    return queries
+
+
+def write_requirement(target: Path) -> None:
+    """Write the information requirement for a modeller, where no file stands yet."""
+    write_new(target, requirement_bytes())
