@@ -10,16 +10,16 @@ from typing import TYPE_CHECKING
 
 from ifccheck.beam import Beam, Case, Combination, Model, Reason, Remark
 from ifccheck.brief.model import Brief
+from ifccheck.findings import Finding
 from ifccheck.publish.report import Assumption, CaseSummary, Report
 from ifccheck.publish.words import CURES, NO_LOAD, head_of
-from ifccheck.rating.answers import ratings_of, unrated
+from ifccheck.rating.answers import ratings_of, unrated, unstated_stirrups
 from ifccheck.rating.batch import Batch
 from ifccheck.rating.results import Rating
 from ifccheck.rating.subject import Subject, Unrated
 from ifccheck.sheet import Sheet, bare_sheet, sheet_maker
 from ifccheck.standards import Options, Standard
-from ifccheck.subjects import Gathered
-from ifccheck.survey import Finding
+from ifccheck.subjects import Gathered, yield_unknown
 
 if TYPE_CHECKING:
     from ifccheck.ifc.opening import OpenedModel
@@ -188,21 +188,52 @@ def files_of(
 
 
 def findings_of(
-    model: Model, gathered: Gathered, unmet: Mapping[str, tuple[str, ...]], *, briefed: bool
+    model: Model,
+    gathered: Gathered,
+    filled: Gathered,
+    unmet: Mapping[str, tuple[str, ...]],
+    brief: Brief,
 ) -> dict[str, Finding]:
-    """What a rating of each beam would lack, by key; ``briefed``: the brief is the engineer's."""
-    gathered_all: list[Subject | Unrated] = [*gathered.subjects, *gathered.unrated]
-    known = {each.beam.key: (each.reasons, each.remarks) for each in gathered_all}
+    """What a rating of each beam would lack, by key.
+
+    ``gathered`` is by the brief as it is, ``filled`` by the same with all defaults given: it
+    shows what else is missing once they are. ``unmet`` is of the information requirement.
+    """
+    hidden = {each.beam.key: _hidden(each, brief) for each in filled.subjects}
+    hidden |= {each.beam.key: list(each.reasons) for each in filled.unrated}
+    as_it_is: list[Subject | Unrated] = [*gathered.subjects, *gathered.unrated]
+    known = {each.beam.key: each for each in as_it_is}
     return {
-        beam.key: _finding(*known[beam.key], unmet.get(beam.key, ()), briefed=briefed)
+        beam.key: _finding(
+            (*known[beam.key].reasons, *hidden[beam.key]),
+            known[beam.key].remarks,
+            unmet.get(beam.key, ()),
+            briefed=bool(brief.file_name),
+        )
         for beam in model.beams
     }
+
+
+def _hidden(subject: Subject, brief: Brief) -> list[Reason]:
+    """What is missing of a beam's steel once its cover is known."""
+    steel = (
+        ("bars", subject.bar_yield, brief.defaults.bar_yield),
+        ("stirrups", subject.stirrup_yield, brief.defaults.stirrup_yield),
+    )
+    unknown = [
+        yield_unknown(what)
+        for what, yields, default in steel
+        if default is None and any(given.assumed for given in yields)
+    ]
+    texts = [Reason(text) for text in (*unknown, *unstated_stirrups(subject))]
+    return [*subject.reasons, *texts]
 
 
 def _finding(
     reasons: Sequence[Reason], remarks: Sequence[Remark], unmet: tuple[str, ...], *, briefed: bool
 ) -> Finding:
-    texts = [each.text for each in reasons if briefed or each.text != NO_LOAD]
+    said = dict.fromkeys(each.text for each in reasons)
+    texts = [text for text in said if briefed or text != NO_LOAD]
     to_state = [text for text in texts if head_of(text) in CURES]
     return Finding(
         lacks=tuple(text for text in texts if text not in to_state),

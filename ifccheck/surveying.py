@@ -8,9 +8,10 @@ from pathlib import Path
 
 from ifccheck import __version__, results
 from ifccheck.brief.selecting import join
-from ifccheck.brief.silent import silent_brief
+from ifccheck.brief.silent import silent_brief, with_all_defaults
 from ifccheck.brief.starter import StarterModel, quoted, starter_brief
 from ifccheck.errors import BriefError, UsageError
+from ifccheck.findings import Survey
 from ifccheck.frame.carrying import contacts_of, unheld_ends
 from ifccheck.ifc.requirement import requirement_bytes, unmet_requirements
 from ifccheck.ifc.selection import select
@@ -31,7 +32,7 @@ from ifccheck.pipeline import (
 from ifccheck.publish.words import head_of
 from ifccheck.standards import Options, Standard
 from ifccheck.standards.discovery import all_standards
-from ifccheck.survey import Survey
+from ifccheck.subjects import gather
 
 
 @dataclass(frozen=True)
@@ -74,13 +75,13 @@ def silent_plan() -> Plan:
 def _survey(read: Read, plan: Plan, say: Say) -> Survey:
     matches = join(plan.brief, plan.schedule, find_beams(read, plan))
     model, gathered = gather_model(read, matches, plan, say)
+    filled = gather(model, with_all_defaults(plan.brief), matches, plan.standard)
     say(f"holding {model.file_name} against the information requirement")
-    briefed = bool(plan.brief.file_name)
     unmet = unmet_requirements(read.opened, model.beams)
     return Survey(
         version=__version__,
         model=model,
-        findings=results.findings_of(model, gathered, unmet, briefed=briefed),
+        findings=results.findings_of(model, gathered, filled, unmet, plan.brief),
         brief_name=plan.brief.file_name,
         brief_sha256=plan.brief.sha256,
     )

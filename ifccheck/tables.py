@@ -12,8 +12,8 @@ from collections.abc import Iterable, Mapping, Sequence
 from typing import TYPE_CHECKING
 
 from ifccheck.beam import Beam, Model, OutOfScope, Span, Verdict
+from ifccheck.findings import Survey
 from ifccheck.rating import LimitStateRating, Rating, SafeLoad
-from ifccheck.survey import Survey
 
 if TYPE_CHECKING:
     import pandas as pd

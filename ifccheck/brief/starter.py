@@ -16,7 +16,7 @@ from dataclasses import dataclass
 
 from ifccheck.beam import Beam
 from ifccheck.brief.convert import DEFAULT_SOURCES
-from ifccheck.survey import PropertySeen, Survey
+from ifccheck.findings import PropertySeen, Survey
 
 WIDTH = 98
 LONGEST_MARK = 80
@@ -124,8 +124,8 @@ def _silence(models: Sequence[StarterModel], reason: str, name: _Names) -> str:
 def _reinforcement(models: Sequence[StarterModel], name: _Names) -> Iterator[str]:
     bare = [beam for model in models for beam in model.beams if not beam.reinforcement]
     yield "[reinforcement]"
-    yield from _prose("The first of these that speaks of a beam is used.")
-    yield f"sources = [{', '.join(map(quoted, DEFAULT_SOURCES))}]"
+    yield from _prose("The first of these that speaks of a beam is used; this order is the usual.")
+    yield f"#sources = [{', '.join(map(quoted, DEFAULT_SOURCES))}]"
     yield from _prose(
         "A beam schedule, CSV or XLSX beside this file, with a column mark and columns top, bottom,"
         " stirrups, cover."

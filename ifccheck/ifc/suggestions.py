@@ -11,11 +11,11 @@ from collections import defaultdict
 from collections.abc import Iterator, Mapping, Sequence
 
 from ifccheck.beam import Beam
+from ifccheck.findings import PropertySeen
 from ifccheck.ifc.context import make_context
 from ifccheck.ifc.opening import OpenedModel
 from ifccheck.ifc.properties import PropertyValue
 from ifccheck.notation import NotationError, parse_bars, parse_stirrups
-from ifccheck.survey import PropertySeen
 
 OWN = "BeamRating_"
 """How the names of our own sets begin"""

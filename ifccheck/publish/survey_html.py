@@ -8,6 +8,7 @@ from dataclasses import dataclass
 from markupsafe import Markup
 
 from ifccheck.beam import Beam
+from ifccheck.findings import Finding, State, Survey
 from ifccheck.publish.page import Tally, dress, figures, left_out, proportion
 from ifccheck.publish.plan import Look, storey_plans
 from ifccheck.publish.quantities import quantity_words
@@ -30,7 +31,6 @@ from ifccheck.publish.survey_words import (
 )
 from ifccheck.publish.templates import template
 from ifccheck.publish.words import CAUTIONS_OF_A_SURVEY, head_of, section_words
-from ifccheck.survey import Finding, State, Survey
 
 MOST_FIRST = 6
 """Things missing, and doubts, that are named at the top of the page."""

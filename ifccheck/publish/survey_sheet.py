@@ -8,6 +8,7 @@ from dataclasses import dataclass
 from markupsafe import Markup
 
 from ifccheck.beam import Bars, Beam, DescribedZone, Given, Load, Outline, Run, Span, Stirrups
+from ifccheck.findings import Finding
 from ifccheck.publish.drawings import section
 from ifccheck.publish.elevation import elevation
 from ifccheck.publish.quantities import quantity_words
@@ -15,7 +16,6 @@ from ifccheck.publish.sheet_html import SteelRow, bar_row, beam_facts, metres, s
 from ifccheck.publish.survey_words import state_band, zone_words
 from ifccheck.publish.templates import template
 from ifccheck.publish.words import CURES, head_of, outline_size
-from ifccheck.survey import Finding
 from ifccheck.units import ShownKind
 
 

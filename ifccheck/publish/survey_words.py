@@ -7,10 +7,10 @@ from collections.abc import Iterable
 from dataclasses import dataclass
 
 from ifccheck.beam import Beam, DescribedZone
+from ifccheck.findings import Finding, State, Survey
 from ifccheck.notation import show_bars, show_stirrups
 from ifccheck.publish.quantities import quantity_words
 from ifccheck.publish.words import NO_LOAD, head_of
-from ifccheck.survey import Finding, State, Survey
 
 STATES = {
     "supports unknown": "supports",

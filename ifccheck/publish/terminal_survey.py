@@ -10,6 +10,7 @@ from rich.console import Console, Group, RenderableType
 from rich.text import Text
 
 from ifccheck.beam import Beam
+from ifccheck.findings import State, Survey
 from ifccheck.publish.survey_words import (
     SETTLED,
     Told,
@@ -22,7 +23,6 @@ from ifccheck.publish.survey_words import (
 )
 from ifccheck.publish.terminal_parts import SHORT, Cell, Terminal
 from ifccheck.publish.words import head_of, section_words
-from ifccheck.survey import State, Survey
 
 MOST_GROUPS, MOST_LISTED, MOST_UNMET = 60, 12, 4
 COLUMNS = (">beams", "section", "concrete", "steel", "missing for a rating; doubts")
@@ -35,6 +35,8 @@ def survey_text(survey: Survey, console: Console) -> RenderableType:
     """Return what a model holds and what a rating of its beams would lack."""
     to = Terminal(console)
     parts: list[RenderableType] = [to.text(_heading(survey), style="bold")]
+    if left_out := _left_out(survey):
+        parts.append(to.text(f"Out of scope: {left_out}"))
     if survey.model.beams:
         parts += [_table(survey, to), *_whole(survey, to)]
     parts += _model_remarks(survey, to)
@@ -44,13 +46,12 @@ def survey_text(survey: Survey, console: Console) -> RenderableType:
 def _heading(survey: Survey) -> str:
     model = survey.model
     in_scope = f"{_beams(len(model.beams))} in scope" if model.beams else "no concrete beam"
-    return f"{model.file_name} ({model.schema}): {in_scope}{_left_out(survey)}"
+    return f"{model.file_name} ({model.schema}): {in_scope}"
 
 
 def _left_out(survey: Survey) -> str:
     reasons = Counter(member.reason for member in survey.model.out_of_scope)
-    told = ", ".join(f"{count} {reason}" for reason, count in sorted(reasons.items()))
-    return f"; out of scope: {told}" if told else ""
+    return ", ".join(f"{count} {reason}" for reason, count in sorted(reasons.items()))
 
 
 def _table(survey: Survey, to: Terminal) -> RenderableType:
@@ -128,10 +129,9 @@ def _whole(survey: Survey, to: Terminal) -> Iterator[RenderableType]:
         yield to.table((">beams", "doubt"), [(_count(told), told.text) for told in doubts])
     ready = len(beams) - survey.count(State.INCOMPLETE)
     doubtful = survey.count(State.DOUBTFUL)
-    yield to.text(
-        f"Nothing missing: {ready} of {_beams(len(beams))}"
-        f"{f' ({doubtful} with doubts)' if doubtful else ''}. Loads are the brief's to give."
-    )
+    doubts_only = f" ({doubtful} with doubts)" if doubtful else ""
+    loads = "" if survey.brief_name else " Loads are the brief's to give."
+    yield to.text(f"Nothing missing: {ready} of {_beams(len(beams))}{doubts_only}.{loads}")
     yield to.text(_requirement(survey))
 
 
