@@ -61,6 +61,16 @@ class Survey:
     brief_name: str = ""
     """Empty where there is no brief yet"""
     brief_sha256: str = ""
+    bars_in_file: int = 0
+    """Bars and meshes that the model holds, whosever they are"""
+
+    @property
+    def beams_with_bars(self) -> int:
+        """Number of beams in scope of which physical bars were read."""
+        return sum(
+            any(source.source == "bars" for source in beam.reinforcement)
+            for beam in self.model.beams
+        )
 
     def count(self, state: State) -> int:
         """Return the number of beams in a state."""

@@ -15,7 +15,7 @@ from ifccheck.findings import Survey
 from ifccheck.frame.carrying import contacts_of, unheld_ends
 from ifccheck.ifc.requirement import requirement_bytes, unmet_requirements
 from ifccheck.ifc.selection import select
-from ifccheck.ifc.suggestions import properties_of_steel
+from ifccheck.ifc.suggestions import bars_in_file, properties_of_steel
 from ifccheck.memory import uncollected
 from ifccheck.outputs import refuse_existing, write_new
 from ifccheck.pipeline import (
@@ -84,6 +84,7 @@ def _survey(read: Read, plan: Plan, say: Say) -> Survey:
         findings=results.findings_of(model, gathered, filled, unmet, plan.brief),
         brief_name=plan.brief.file_name,
         brief_sha256=plan.brief.sha256,
+        bars_in_file=bars_in_file(read.opened),
     )
 
 

@@ -254,6 +254,14 @@ def test_a_survey_with_a_brief_does_not_tell_that_loads_are_its_to_give() -> Non
     assert "Loads are" not in survey_said(survey)
 
 
+@pytest.mark.parametrize(
+    ("count", "words"),
+    [(0, "The file holds no bars."), (1, "The file holds 1 bar; bars were read of 12 beams")],
+)
+def test_a_survey_tells_how_many_bars_were_left_in_the_file(count: int, words: str) -> None:
+    assert words in survey_said(replace(made_up_survey(), bars_in_file=count))
+
+
 def test_a_survey_of_many_kinds_of_beams_stays_short() -> None:
     """Beyond sixty groups the beams of a storey are told together."""
     beams = tuple(

@@ -1,4 +1,5 @@
-"""Property sets of a project that speak of reinforcement, by their names and their values.
+"""What else a model holds of reinforcement: its bars in number, and property sets of a project
+that speak of it by their names and their values.
 
 Only suggestions come from this: what a property means is the engineer's to say, in the mapping
 of the brief.
@@ -39,6 +40,13 @@ FIELD_WORDS: Mapping[str, str] = {
 """Words of a property's name by the field that they speak of; the first that fits counts."""
 _FIELDS = {field: re.compile(words, re.IGNORECASE) for field, words in FIELD_WORDS.items()}
 _NOTATION = ("top", "bottom", "side", "stirrups")
+
+
+def bars_in_file(opened: OpenedModel) -> int:
+    """Return how many reinforcing bars and meshes a model holds."""
+    return sum(
+        len(opened.file.by_type(kind)) for kind in ("IfcReinforcingBar", "IfcReinforcingMesh")
+    )
 
 
 def properties_of_steel(opened: OpenedModel, beams: Sequence[Beam]) -> tuple[PropertySeen, ...]:

@@ -231,8 +231,13 @@ def _breadth(outline: Outline) -> Place:
 
 def _stem(outline: Outline) -> Place:
     """Breadth of the lower half, which a flange above does not widen."""
-    middle = sum(max(zs) + min(zs) for zs in [[z for _, z in outline.rings[0]]]) / 2.0
-    across = [y for y, z in outline.rings[0] if z < middle]
+    ring = outline.rings[0]
+    heights = [z for _, z in ring]
+    middle = (max(heights) + min(heights)) / 2.0
+    across = [y for y, z in ring if z < middle]
+    for (y0, z0), (y1, z1) in zip(ring, (*ring[1:], ring[0]), strict=True):
+        if min(z0, z1) < middle < max(z0, z1):
+            across.append(y0 + (y1 - y0) * (middle - z0) / (z1 - z0))
     return min(across), max(across)
 
 

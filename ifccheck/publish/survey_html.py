@@ -18,6 +18,7 @@ from ifccheck.publish.survey_sheet import survey_sheet_html
 from ifccheck.publish.survey_words import (
     SETTLED,
     Told,
+    bars_words,
     doubts_of,
     gist,
     lack_words,
@@ -63,6 +64,7 @@ def render_survey(survey: Survey) -> str:
         sources=_sources_of_steel(beams),
         rows=rows,
         meeting=survey.meeting,
+        bars=bars_words(survey),
         unmet=[_listed(told, by_key) for told in unmet_of(survey)],
         out_of_scope=left_out(survey.model.out_of_scope),
         model_doubts=[each for each in survey.model.remarks if each.kind == "doubt"],

@@ -105,6 +105,15 @@ def state_words(finding: Finding) -> list[str]:
     return list(dict.fromkeys(STATES.get(head_of(text), text) for text in finding.to_state))
 
 
+def bars_words(survey: Survey) -> str:
+    """Return how many bars the file holds and of how many beams they were read."""
+    if not survey.bars_in_file:
+        return "The file holds no bars."
+    bars = "1 bar" if survey.bars_in_file == 1 else f"{survey.bars_in_file} bars"
+    beams = "1 beam" if survey.beams_with_bars == 1 else f"{survey.beams_with_bars} beams"
+    return f"The file holds {bars}; bars were read of {beams} in scope."
+
+
 def strength_words(beam: Beam) -> str:
     """Return the concrete strength that was read."""
     strength = beam.concrete_strength

@@ -14,6 +14,7 @@ from ifccheck.findings import State, Survey
 from ifccheck.publish.survey_words import (
     SETTLED,
     Told,
+    bars_words,
     doubts_of,
     missing_of,
     source_words,
@@ -132,6 +133,8 @@ def _whole(survey: Survey, to: Terminal) -> Iterator[RenderableType]:
     doubts_only = f" ({doubtful} with doubts)" if doubtful else ""
     loads = "" if survey.brief_name else " Loads are the brief's to give."
     yield to.text(f"Nothing missing: {ready} of {_beams(len(beams))}{doubts_only}.{loads}")
+    lost = survey.bars_in_file and not survey.beams_with_bars
+    yield to.text(bars_words(survey), style=SHORT if lost else "")
     yield to.text(_requirement(survey))
 
 
