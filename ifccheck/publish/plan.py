@@ -236,7 +236,7 @@ def _stem(outline: Outline) -> Place:
     middle = (max(heights) + min(heights)) / 2.0
     across = [y for y, z in ring if z < middle]
     for (y0, z0), (y1, z1) in zip(ring, (*ring[1:], ring[0]), strict=True):
-        if min(z0, z1) < middle < max(z0, z1):
+        if (z0 < middle) != (z1 < middle):
             across.append(y0 + (y1 - y0) * (middle - z0) / (z1 - z0))
     return min(across), max(across)
 
