@@ -371,9 +371,10 @@ def test_a_plate_out_of_level_is_drawn_in_its_whole_width() -> None:
     model = replace(REPORT.model, beams=(plate,), members=())
     (plan,) = framing_plans(model, REPORT.ratings, {plate.key: 0})
     (body,) = of_class(plan.svg, "body")
-    (whole,) = of_class(plan.svg, "flange")
-    ys, wide = ([y for _, y in numbers(e.get("d") or "")] for e in (body, whole))
-    assert max(ys) - min(ys) >= 0.99 * (max(wide) - min(wide)) / 2.0
+    xs, ys = zip(*numbers(body.get("d") or ""), strict=True)
+    wide, long = max(ys) - min(ys), max(xs) - min(xs)
+    assert wide / long == pytest.approx(4000.0 / beam.length, rel=1e-3)
+    assert of_class(plan.svg, "flange") == []
 
 
 def test_a_text_beside_a_beam_is_the_first_that_finds_room() -> None:
