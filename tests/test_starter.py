@@ -241,20 +241,41 @@ def test_hostile_names_of_a_whole_report(tmp_path: Path) -> None:
     assert load_brief(path).loads == ()
 
 
-def test_a_beam_is_named_so_that_no_other_is_reached() -> None:
-    """By its Name where that is its own, else by its Tag, else by its GlobalId."""
+def named(*beams: tuple[str, str]) -> list[str]:
+    """How a brief for beams of these Names and Tags names the first three of them."""
     model = made_up_report().model
-    first, second, third, fourth = model.beams[:4]
-    beams = (
-        replace(first, name="A", tag="1"),
-        replace(second, name="B", tag="2"),
-        replace(third, name="B", tag="3"),
-        replace(fourth, name="2", tag=""),
-    )
-    text = starter_of(survey_of(replace(model, beams=beams), {}))
-    listed = re.search(r"^#beams = (\[.*\])$", text, re.MULTILINE)
+    made = [
+        replace(beam, name=name, tag=tag, key=f"K-{i}", guid=f"K-{i}")
+        for i, (beam, (name, tag)) in enumerate(zip(model.beams, beams, strict=False))
+    ]
+    storey = {beam.key: "here" if i < 3 else "there" for i, beam in enumerate(made)}
+    placed = tuple(replace(beam, storey=storey[beam.key]) for beam in made)
+    text = starter_of(survey_of(replace(model, beams=placed), {}))
+    listed = re.search(r"# here: 3 beams\n(?:#.*\n)*?#beams = (\[.*\])\n", text)
     assert listed
-    assert tomllib.loads(f"x = {listed[1]}")["x"] == ["A", second.key, "3", fourth.key]
+    found: list[str] = tomllib.loads(f"x = {listed[1]}")["x"]
+    return found
+
+
+@pytest.mark.parametrize(
+    ("beams", "references"),
+    [
+        ([("A", "1"), ("B", "2"), ("C", "3"), ("D", "4")], ["A", "B", "C"]),
+        ([("A", "1"), ("A", "2"), ("B", "3"), ("D", "4")], ["A", "B"]),
+        ([("A", "1"), ("A", "2"), ("B", "3"), ("A", "4")], ["1", "2", "B"]),
+        ([("A", "1"), ("B", "D"), ("C", "3"), ("D", "4")], ["A", "B", "C"]),
+        ([("D", "1"), ("B", "2"), ("C", "3"), ("E", "D")], ["1", "B", "C"]),
+        ([("", ""), ("B*", ""), ("x" * 99, "7"), ("D", "4")], ["K-0", "K-1", "7"]),
+        ([("K-3", "1"), ("B", "B"), ("C", "3"), ("D", "4")], ["1", "B", "C"]),
+    ],
+    ids=["each its own", "shared by those meant", "shared with others", "another's tag",
+         "also a tag of another", "no plain mark", "as a GlobalId"],
+)  # fmt: skip
+def test_beams_are_named_so_that_no_other_is_reached(
+    beams: list[tuple[str, str]], references: list[str]
+) -> None:
+    """By Names or Tags that reach these alone, else by GlobalIds."""
+    assert named(*beams) == references
 
 
 def test_ends_are_asked_for_where_the_rating_would_ask(tmp_path: Path) -> None:

@@ -106,7 +106,7 @@ def test_what_is_missing_is_listed_with_its_beams_and_what_settles_it() -> None:
     lacking = [b for b in SURVEY.model.beams if SURVEY.of(b).lacks]
     assert section.count("data-row=") == 2 * len(lacking)
     text = Seen(section).text
-    assert "no reinforcement found a schedule, a mapping" in text
+    assert "no reinforcement found settled by a schedule, a mapping" in text
     assert f"{len(lacking)} " in text
     assert "defaults.concrete_strength in the brief" in text
 

@@ -11,7 +11,7 @@ import json
 import math
 import textwrap
 from collections import Counter
-from collections.abc import Callable, Iterable, Iterator, Mapping, Sequence
+from collections.abc import Callable, Iterator, Mapping, Sequence
 from dataclasses import dataclass
 
 from ifccheck.beam import Beam
@@ -45,17 +45,17 @@ class StarterModel:
 def starter_brief(models: Sequence[StarterModel], standards: Sequence[str]) -> str:
     """Return the text of a brief for models that were surveyed, by the first of the standards."""
     beams = [beam for model in models for beam in model.beams]
-    name = _references(beams)
+    names = _Names(beams)
     parts = (
         _head(models),
         _basis(standards),
-        _defaults(models, name),
-        _reinforcement(models, name),
+        _defaults(models, names),
+        _reinforcement(models, names),
         _cases(),
-        *(_storeys(model, name) for model in models),
-        _supports(models, name),
-        _statements(models, name),
-        _materials(models, name),
+        *(_storeys(model, names) for model in models),
+        _supports(models, names),
+        _statements(models, names),
+        _materials(models, names),
     )
     return "\n\n".join("\n".join(part) for part in map(list, parts) if part) + "\n"
 
@@ -86,7 +86,7 @@ def _basis(standards: Sequence[str]) -> Iterator[str]:
 # Defaults --------------------------------------------------------------------------------------
 
 
-def _defaults(models: Sequence[StarterModel], name: _Names) -> Iterator[str]:
+def _defaults(models: Sequence[StarterModel], names: _Names) -> Iterator[str]:
     yield from _prose("Used only where the model is silent; the results list each use.")
     yield "[defaults]"
     lacking: tuple[tuple[str, str, str], ...] = (
@@ -95,7 +95,7 @@ def _defaults(models: Sequence[StarterModel], name: _Names) -> Iterator[str]:
         ("stirrup_yield", "yield strength of the stirrups unknown", '"? MPa"'),
     )
     for key, reason, value in lacking:
-        yield from _prose(_silence(models, reason, name))
+        yield from _prose(_silence(models, reason, names))
         yield f"#{key} = {value}"
     yield from _prose(
         "Clear cover to the stirrups, where bars are given by number and not by place."
@@ -109,7 +109,7 @@ def _defaults(models: Sequence[StarterModel], name: _Names) -> Iterator[str]:
     yield '#supports = ["?", "?"]'
 
 
-def _silence(models: Sequence[StarterModel], reason: str, name: _Names) -> str:
+def _silence(models: Sequence[StarterModel], reason: str, names: _Names) -> str:
     found = [
         beam
         for model in models
@@ -118,10 +118,10 @@ def _silence(models: Sequence[StarterModel], reason: str, name: _Names) -> str:
     ]
     if not found:
         return "No beam was found to need it yet."
-    return f"The model gives none for {_some(found, name)}."
+    return f"The model gives none for {_some(found, names)}."
 
 
-def _reinforcement(models: Sequence[StarterModel], name: _Names) -> Iterator[str]:
+def _reinforcement(models: Sequence[StarterModel], names: _Names) -> Iterator[str]:
     bare = [beam for model in models for beam in model.beams if not beam.reinforcement]
     yield "[reinforcement]"
     yield from _prose("The first of these that speaks of a beam is used; this order is the usual.")
@@ -129,7 +129,7 @@ def _reinforcement(models: Sequence[StarterModel], name: _Names) -> Iterator[str
     yield from _prose(
         "A beam schedule, CSV or XLSX beside this file, with a column mark and columns top, bottom,"
         " stirrups, cover."
-        + (f" The model has no reinforcement for {_some(bare, name)}." if bare else "")
+        + (f" The model has no reinforcement for {_some(bare, names)}." if bare else "")
     )
     yield '#schedule = "?"'
     yield from _mapping([seen for model in models for seen in model.properties])
@@ -180,7 +180,7 @@ def _cases() -> Iterator[str]:
     yield "#rated = true"
 
 
-def _storeys(model: StarterModel, name: _Names) -> Iterator[str]:
+def _storeys(model: StarterModel, names: _Names) -> Iterator[str]:
     heights = {storey.name: storey.elevation for storey in model.survey.model.storeys}
     by_storey: dict[str, list[Beam]] = {}
     for beam in model.beams:
@@ -191,11 +191,11 @@ def _storeys(model: StarterModel, name: _Names) -> Iterator[str]:
     )
     for storey in sorted(by_storey, key=lambda each: (heights.get(each, math.inf), each)):
         yield ""
-        yield from _storey(storey, heights.get(storey), by_storey[storey], model, name)
+        yield from _storey(storey, heights.get(storey), by_storey[storey], model, names)
 
 
 def _storey(
-    storey: str, height: float | None, beams: Sequence[Beam], model: StarterModel, name: _Names
+    storey: str, height: float | None, beams: Sequence[Beam], model: StarterModel, names: _Names
 ) -> Iterator[str]:
     at = "" if height is None else f", elevation {height / 1000.0:.2f} m"
     yield from _prose(f"{storey or 'No storey'}{at}: {_count(beams)}")
@@ -203,16 +203,16 @@ def _storey(
     for beam in beams:
         alike.setdefault((_section(beam), beam.material or "no material"), []).append(beam)
     for (section, material), group in alike.items():
-        yield from _prose(f"  {section}, {material}: {', '.join(map(name, group))}", indent="    ")
+        yield from _prose(f"  {section}, {material}: {names.told(group)}", indent="    ")
     yield "#[[loads]]"
     yield '#case = "floor"'
     query = model.storey_queries.get(storey)
-    yield from [f"#where = {quoted(query)}"] if query else _marks(beams, name)
+    yield from [f"#where = {quoted(query)}"] if query else _marks(beams, names)
     yield '#line = "? kN/m"'
     yield ""
     yield "#[[loads]]"
     yield '#case = "equipment"'
-    yield from _marks(beams[:MOST_EXAMPLES], name)
+    yield from _marks(beams[:MOST_EXAMPLES], names)
     yield '#point = "? kN"'
     yield '#at = "? m"'
 
@@ -232,7 +232,7 @@ def _size(ring: Sequence[tuple[float, float]]) -> str:
 # Statements about beams --------------------------------------------------------------------------
 
 
-def _supports(models: Sequence[StarterModel], name: _Names) -> Iterator[str]:
+def _supports(models: Sequence[StarterModel], names: _Names) -> Iterator[str]:
     """Ends that nothing holds, the beams with the same ones together."""
     groups: dict[tuple[str, ...], list[Beam]] = {}
     for model in models:
@@ -250,11 +250,11 @@ def _supports(models: Sequence[StarterModel], name: _Names) -> Iterator[str]:
     for i, (ends, beams) in enumerate(groups.items()):
         yield from [""] if i else []
         yield "#[[supports]]"
-        yield from _marks(beams, name)
+        yield from _marks(beams, names)
         yield from (f'#{end} = "?"' for end in ends)
 
 
-def _statements(models: Sequence[StarterModel], name: _Names) -> Iterator[str]:
+def _statements(models: Sequence[StarterModel], names: _Names) -> Iterator[str]:
     rested = _whose(models, lambda text: text.startswith("reactions not included"))
     yield from _prose(
         "What rests on a beam between its supports: put its reactions in the loads above, then say"
@@ -262,13 +262,13 @@ def _statements(models: Sequence[StarterModel], name: _Names) -> Iterator[str]:
     )
     if rested:
         yield "#[[beams]]"
-        yield from _marks(rested, name)
+        yield from _marks(rested, names)
         yield "#loads_complete = true"
     else:
         yield from _prose("Nothing was found to rest on a beam whose supports are known.")
 
 
-def _materials(models: Sequence[StarterModel], name: _Names) -> Iterator[str]:
+def _materials(models: Sequence[StarterModel], names: _Names) -> Iterator[str]:
     beams = [beam for model in models for beam in model.beams]
     found = Counter(_concrete(beam) for beam in beams)
     yield from _prose("Concretes of the model:")
@@ -278,7 +278,7 @@ def _materials(models: Sequence[StarterModel], name: _Names) -> Iterator[str]:
     if unknown:
         yield from _prose("What is stated of single beams beats the model:")
         yield "#[[materials]]"
-        yield from _marks(unknown, name)
+        yield from _marks(unknown, names)
         yield '#concrete_strength = "? MPa"'
 
 
@@ -299,23 +299,42 @@ def _whose(models: Sequence[StarterModel], says: Callable[[str], bool]) -> list[
 
 # Words -------------------------------------------------------------------------------------------
 
-_Names = Callable[[Beam], str]
 
+class _Names:
+    """How beams are named so that the names reach them and no others."""
 
-def _references(beams: Sequence[Beam]) -> _Names:
-    """How each beam is named so that the name reaches it and no other: Name, Tag, else key."""
-    names, tags = (Counter(each) for each in ([b.name for b in beams], [b.tag for b in beams]))
-    keys = {beam.key for beam in beams} | {beam.guid for beam in beams}
+    def __init__(self, beams: Sequence[Beam]) -> None:
+        self._keys = {beam.key for beam in beams} | {beam.guid for beam in beams}
+        self._named = _by(beams, lambda beam: beam.name)
+        self._tagged = _by(beams, lambda beam: beam.tag)
 
-    def reference(beam: Beam) -> str:
-        for text, own, other in ((beam.name, names, tags), (beam.tag, tags, names)):
-            if own[text] == 1 and _is_plain(text) and text not in keys:
-                strangers = other[text] - (beam.name == beam.tag)
-                if strangers <= 0:
-                    return text
+    def references(self, beams: Sequence[Beam]) -> list[str]:
+        """Return Names or Tags where they reach none but these beams, else their keys."""
+        own = {beam.key for beam in beams}
+        return list(dict.fromkeys(self._reference(beam, own) for beam in beams))
+
+    def _reference(self, beam: Beam, own: set[str]) -> str:
+        for text in (beam.name, beam.tag):
+            tagged, named = self._tagged.get(text, set()), self._named.get(text, set())
+            clear = not tagged or named <= tagged
+            if clear and (tagged or named) <= own and _is_plain(text) and text not in self._keys:
+                return text
         return beam.key
 
-    return reference
+    def told(self, beams: Sequence[Beam], most: int | None = None) -> str:
+        """Return what people call the beams, each mark once with how many go by it."""
+        counts = Counter(beam.mark for beam in beams)
+        marks = [f"{mark} ({n} times)" if n > 1 else mark for mark, n in counts.items()]
+        shown = marks[:most]
+        more = len(marks) - len(shown)
+        return ", ".join(shown) + (f" and {more} more" if more else "")
+
+
+def _by(beams: Sequence[Beam], text: Callable[[Beam], str]) -> dict[str, set[str]]:
+    found: dict[str, set[str]] = {}
+    for beam in beams:
+        found.setdefault(text(beam), set()).add(beam.key)
+    return found
 
 
 def _is_plain(text: str) -> bool:
@@ -327,17 +346,17 @@ def _is_plain(text: str) -> bool:
 def quoted(text: str) -> str:
     """Return a text as a basic string of TOML.
 
-    >>> print(quoted('beam "A"'))
-    "beam \\\\"A\\\\""
+    >>> print(quoted("beam 7\\n"))
+    "beam 7\\n"
     """
     written = json.dumps(text, ensure_ascii=False)
     return "".join(c if c.isprintable() else f"\\U{ord(c):08x}" for c in written)
 
 
-def _marks(beams: Iterable[Beam], name: _Names) -> Iterator[str]:
+def _marks(beams: Sequence[Beam], names: _Names) -> Iterator[str]:
     """A list of beams, commented out, on as many lines as it takes."""
     line = "#beams = ["
-    for mark in (f"{quoted(name(beam))}, " for beam in beams):
+    for mark in (f"{quoted(each)}, " for each in names.references(beams)):
         if len(line) + len(mark) > WIDTH:
             yield line.rstrip()
             line = "#"
@@ -345,10 +364,8 @@ def _marks(beams: Iterable[Beam], name: _Names) -> Iterator[str]:
     yield line.removesuffix(", ") + "]"
 
 
-def _some(beams: Sequence[Beam], name: _Names) -> str:
-    marks = [name(beam) for beam in beams[:MOST_EXAMPLES]]
-    more = len(beams) - len(marks)
-    return f"{_count(beams)}: {', '.join(marks)}" + (f" and {more} more" if more else "")
+def _some(beams: Sequence[Beam], names: _Names) -> str:
+    return f"{_count(beams)}: {names.told(beams, MOST_EXAMPLES)}"
 
 
 def _count(beams: Sequence[Beam]) -> str:

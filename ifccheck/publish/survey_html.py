@@ -16,7 +16,6 @@ from ifccheck.publish.rows import storey_names
 from ifccheck.publish.sheet_html import metres, packed
 from ifccheck.publish.survey_sheet import survey_sheet_html
 from ifccheck.publish.survey_words import (
-    SETTLED,
     Told,
     bars_words,
     doubts_of,
@@ -29,9 +28,10 @@ from ifccheck.publish.survey_words import (
     strength_words,
     to_state_of,
     unmet_of,
+    what_settles,
 )
 from ifccheck.publish.templates import template
-from ifccheck.publish.words import CAUTIONS_OF_A_SURVEY, head_of, section_words
+from ifccheck.publish.words import CAUTIONS_OF_A_SURVEY, section_words
 
 MOST_FIRST = 6
 """Things missing, and doubts, that are named at the top of the page."""
@@ -220,5 +220,5 @@ class _Listed:
 
 
 def _listed(told: Told, rows: Mapping[str, _Row]) -> _Listed:
-    cure = SETTLED.get(head_of(told.text), "")
+    cure = what_settles(told.text)
     return _Listed(told.text, cure, [rows[key] for key in told.beams])

@@ -22,15 +22,17 @@ STATES = {
 _BANDS = {State.INCOMPLETE: "none", State.DOUBTFUL: "u1", State.COMPLETE: "u3"}
 
 SETTLED = {
-    "concrete strength unknown": "defaults.concrete_strength in the brief, or an entry of"
-    " [[materials]], settles it",
-    "yield strength of the bars unknown": "defaults.bar_yield in the brief settles it",
-    "yield strength of the stirrups unknown": "defaults.stirrup_yield in the brief settles it",
-    "no reinforcement found": "a schedule, a mapping of the project's own property sets, or the"
-    " set that the information requirement asks for settles it",
-    "material unknown": "the modeller must name the material",
+    "concrete strength unknown": "defaults.concrete_strength in the brief, or [[materials]]",
+    "yield strength of the bars unknown": "defaults.bar_yield in the brief",
+    "yield strength of the stirrups unknown": "defaults.stirrup_yield in the brief",
+    "cover unknown": "defaults.cover in the brief",
+    "no reinforcement found": "a schedule, a mapping of the project's own property sets, or"
+    " BeamRating_Reinforcement in the model",
+    "the legs of the stirrups are not stated": "a schedule, or the modeller: 2 legs 10M @ 250",
+    "no source says whether there are stirrups": "a schedule, or the modeller: none, if so",
+    "material unknown": "the modeller: a material that is named as concrete",
 }
-"""What settles a thing that is missing, by its head."""
+"""What settles a thing that is missing, by how it begins."""
 
 _OF_BARS = re.compile(r"(?:bars?|stirrups?|mesh(?:es)?) [^:]*: (?=.)")
 _NUMBERS = re.compile(r"\d+(?:\.\d+)?")
@@ -57,6 +59,15 @@ def lack_words(text: str) -> str:
     'yield strength of the bars unknown'
     """
     return text.partition(": neither ")[0]
+
+
+def what_settles(text: str) -> str:
+    """Return what settles a thing that is missing; empty where nothing is known to.
+
+    >>> what_settles("cover unknown")
+    'defaults.cover in the brief'
+    """
+    return next((cure for head, cure in SETTLED.items() if text.startswith(head)), "")
 
 
 def gist(text: str) -> str:

@@ -12,7 +12,6 @@ from rich.text import Text
 from ifccheck.beam import Beam
 from ifccheck.findings import State, Survey
 from ifccheck.publish.survey_words import (
-    SETTLED,
     Told,
     bars_words,
     doubts_of,
@@ -21,6 +20,7 @@ from ifccheck.publish.survey_words import (
     strength_words,
     to_state_of,
     unmet_of,
+    what_settles,
 )
 from ifccheck.publish.terminal_parts import SHORT, Cell, Terminal
 from ifccheck.publish.words import head_of, section_words
@@ -124,7 +124,7 @@ def _whole(survey: Survey, to: Terminal) -> Iterator[RenderableType]:
     """What holds for the model as a whole."""
     beams = survey.model.beams
     if missing := missing_of(survey, beams)[:MOST_LISTED]:
-        rows = [(_count(told), told.text, SETTLED.get(head_of(told.text), "")) for told in missing]
+        rows = [(_count(told), told.text, what_settles(told.text)) for told in missing]
         yield to.table((">beams", "missing for a rating", "what settles it"), rows)
     if doubts := doubts_of(survey, beams)[:MOST_LISTED]:
         yield to.table((">beams", "doubt"), [(_count(told), told.text) for told in doubts])
