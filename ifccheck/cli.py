@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import sys
-from collections.abc import Callable
+from collections.abc import Callable, Iterable
 from io import TextIOWrapper
 from pathlib import Path
 from typing import TYPE_CHECKING, Any
@@ -115,8 +115,7 @@ def survey(
     console = _console()
     for each in found:
         console.print(survey_text(each.survey, console))
-    for path in written:
-        console.print(f"  {path}", soft_wrap=True)
+    _tell_written(console, written)
 
 
 @main.command()
@@ -130,7 +129,7 @@ def requirement(file: Path) -> None:
     from ifccheck import surveying
 
     _guarded(lambda: surveying.write_requirement(file))
-    _console().print(f"  {file}", soft_wrap=True)
+    _tell_written(_console(), [file])
 
 
 @main.command()
@@ -165,6 +164,13 @@ def _console() -> Console:
     if isinstance(sys.stdout, TextIOWrapper):
         sys.stdout.reconfigure(errors="replace")  # a name that the terminal cannot show
     return Console(markup=False, highlight=False, emoji=False, soft_wrap=False)
+
+
+def _tell_written(console: Console, paths: Iterable[Path]) -> None:
+    from ifccheck.publish.words import printable
+
+    for path in paths:
+        console.print(f"  {printable(str(path))}", soft_wrap=True)
 
 
 class _Silent:

@@ -15,7 +15,7 @@ import ifcopenshell
 import ifcopenshell.guid
 import pytest
 from click.testing import CliRunner
-from hypothesis import given, settings
+from hypothesis import HealthCheck, given, settings
 from hypothesis import strategies as st
 
 from ifccheck.beam import Verdict
@@ -36,6 +36,7 @@ from ifccheck.pipeline import rate
 from tests.step_halls import Beam, brief, guid_of, hall, write
 
 REPOSITORY = Path(__file__).resolve().parents[1]
+UNHURRIED = settings(max_examples=200, deadline=None, suppress_health_check=[HealthCheck.too_slow])
 GIVEN = {"TopBars": "2-20M", "BottomBars": "3-25M + 2-20M", "Stirrups": "2 legs 10M @ 200"}
 
 
@@ -329,7 +330,7 @@ def pattern_of(name: str) -> str:
 
 
 @given(st.from_regex(re.compile(pattern_of("TopBars"), re.ASCII), fullmatch=True))
-@settings(max_examples=300)
+@UNHURRIED
 def test_every_bar_notation_that_is_asked_for_is_read(text: str) -> None:
     groups = parse_bars(text)
     assert (groups == ()) == (text == "none")
@@ -339,7 +340,7 @@ def test_every_bar_notation_that_is_asked_for_is_read(text: str) -> None:
 
 
 @given(st.from_regex(re.compile(pattern_of("Stirrups"), re.ASCII), fullmatch=True))
-@settings(max_examples=300)
+@UNHURRIED
 def test_every_stirrup_notation_that_is_asked_for_is_read(text: str) -> None:
     group = parse_stirrups(text)
     assert (group is None) == (text == "none")
@@ -347,7 +348,7 @@ def test_every_stirrup_notation_that_is_asked_for_is_read(text: str) -> None:
 
 
 @given(st.from_regex(re.compile(pattern_of("StrengthClass"), re.ASCII), fullmatch=True))
-@settings(max_examples=300)
+@UNHURRIED
 def test_every_strength_that_is_asked_for_is_read_in_one_way(text: str) -> None:
     reading = read_strength_text(text, "StrengthClass", bare=True)
     assert isinstance(reading, Reading), text

@@ -119,6 +119,14 @@ def test_several_models_are_told_one_after_the_other(tmp_path: Path) -> None:
     ]  # fmt: skip
 
 
+def test_a_file_name_cannot_steer_the_terminal(tmp_path: Path) -> None:
+    write(tmp_path, hall(Beam()), "", "a\x1b[31mb")
+    done = command(tmp_path / "a\x1b[31mb.ifc", "--out", tmp_path / "out")
+    assert done.exit_code == 0
+    assert "\x1b" not in done.stdout
+    assert "a[31mb-survey.html" in done.stdout
+
+
 # What must not be written ------------------------------------------------------------------------
 
 
