@@ -12,6 +12,7 @@ from collections.abc import Iterable, Mapping, Sequence
 from typing import TYPE_CHECKING
 
 from ifccheck.beam import Beam, Model, OutOfScope, Span, Verdict
+from ifccheck.findings import Survey
 from ifccheck.rating import LimitStateRating, Rating, SafeLoad
 
 if TYPE_CHECKING:
@@ -71,24 +72,32 @@ def run_frame(
     return pd.concat(frames, ignore_index=True)
 
 
-def survey_frame(beams: Sequence[Beam], missing: Mapping[str, Sequence[str]]) -> pd.DataFrame:
+def survey_frame(surveys: Iterable[Survey]) -> pd.DataFrame:
     """Return one row per beam: what the model says of it, and what a rating would lack."""
     return _frame(
-        {
-            "mark": beam.mark,
-            "key": beam.key,
-            "storey": beam.storey,
-            "section": " to ".join(dict.fromkeys(run.outline.name for run in beam.runs)),
-            "length_m": _metres(beam.length),
-            "material": beam.material,
-            "concrete_strength_MPa": beam.concrete_strength.value
-            if beam.concrete_strength
-            else math.nan,
-            "reinforcement": ", ".join(each.source for each in beam.reinforcement),
-            "missing": "; ".join(missing.get(beam.key, ())),
-        }
-        for beam in beams
+        {**_surveyed_cells(survey, beam), "model": survey.model.file_name}
+        for survey in surveys
+        for beam in survey.model.beams
     )
+
+
+def _surveyed_cells(survey: Survey, beam: Beam) -> dict[str, Cell]:
+    strength, finding = beam.concrete_strength, survey.of(beam)
+    return {
+        "mark": beam.mark,
+        "key": beam.key,
+        "storey": beam.storey,
+        "section": " to ".join(dict.fromkeys(run.outline.name for run in beam.runs)),
+        "length_m": _metres(beam.length),
+        "material": beam.material,
+        "concrete_strength_MPa": strength.value if strength else math.nan,
+        "reinforcement": ", ".join(each.source for each in beam.reinforcement),
+        "state": str(finding.state),
+        "missing": "; ".join(finding.lacks),
+        "brief_must_state": "; ".join(finding.to_state),
+        "doubts": "; ".join(finding.doubts),
+        "requirement_unmet": "; ".join(finding.unmet),
+    }
 
 
 def limit_states_frame(beams: Sequence[Beam], ratings: Mapping[str, Rating]) -> pd.DataFrame:

@@ -5,8 +5,21 @@ from __future__ import annotations
 from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
 from functools import cached_property
+from typing import Protocol
 
-from ifccheck.beam import SELF, Anchor, Bars, Load, Ring, Run, Span, Stirrups, Support
+from ifccheck.beam import (
+    SELF,
+    Anchor,
+    Bars,
+    Beam,
+    Load,
+    Outline,
+    Ring,
+    Run,
+    Span,
+    Stirrups,
+    Support,
+)
 from ifccheck.publish.quantities import typographic
 from ifccheck.publish.svg import (
     circle,
@@ -18,7 +31,6 @@ from ifccheck.publish.svg import (
     segment,
     thinned,
 )
-from ifccheck.sheet import Sheet
 from ifccheck.units import show
 
 WIDTH, LEFT, RIGHT = 760.0, 56.0, 18.0
@@ -72,7 +84,39 @@ class Frame:
         return self.bottom - height * self.up
 
 
-def elevation(sheet: Sheet) -> str:
+class Drawable(Protocol):
+    """A beam with what is drawn of it: the sheet of a rating, or of a survey."""
+
+    @property
+    def beam(self) -> Beam:
+        """Whose axis and outline are drawn."""
+
+    @property
+    def span(self) -> Span | None:
+        """None where nothing tells how it stands."""
+
+    @property
+    def loads(self) -> tuple[Load, ...]:
+        """What acts on it."""
+
+    @property
+    def bars(self) -> tuple[Bars, ...]:
+        """By place."""
+
+    @property
+    def stirrups(self) -> tuple[Stirrups, ...]:
+        """By place."""
+
+    @property
+    def section(self) -> Outline | None:
+        """The outline at the place of interest."""
+
+    @property
+    def section_x(self) -> float:
+        """That place [mm]."""
+
+
+def elevation(sheet: Drawable) -> str:
     """Return the elevation of a beam; empty where its body could not be read."""
     runs = sheet.beam.runs
     length = sheet.beam.length or max((run.end for run in runs), default=0.0)
