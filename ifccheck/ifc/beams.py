@@ -259,8 +259,6 @@ def _told_by_properties(sets: Sets) -> tuple[tuple[str, str], ...]:
 
 def _note_shape(straight: Straight, doubts: _Doubts) -> None:
     doubts.reasons += straight.reasons
-    if len(straight.runs) > 1 or any(run.outline_end for run in straight.runs):
-        doubts.reason("section varies along the beam: not rated yet")
     for end, length, steep in zip(("start", "end"), straight.oblique, straight.steep, strict=True):
         _note_oblique(end, length, steep, doubts)
 

@@ -19,6 +19,8 @@ from ifccheck.ifc.entity import UnreadableError
 from ifccheck.ifc.figures import Figure, between, farthest, figure, matched, parts_of
 from ifccheck.ifc.solids import Facets, Floats, HalfSpace, Ints, Leaf, Solid
 
+SAME_PLACE = 0.01
+"""Places nearer than this are one [mm]."""
 SHORT = 1.0
 """A stretch shorter than this is the joint between its neighbours [mm]."""
 FINE = 2.0
@@ -148,8 +150,8 @@ def changes(solid: Solid) -> list[float]:
             found += [_meetings(leaf, other) for other in leaves if other is not leaf]
     found.append(_wedges(leaves))
     places = np.concatenate(found)
-    places = np.unique(np.round(places[(places >= low) & (places <= high)], 3))
-    kept = np.concatenate([[True], np.diff(places) > 0.01])
+    places = np.unique(places[(places >= low) & (places <= high)])
+    kept = np.concatenate([[True], np.diff(places) > SAME_PLACE])
     return [float(place) for place in places[kept].tolist()]
 
 
