@@ -10,8 +10,8 @@ from ifccheck.detailing.layers import Placed
 from ifccheck.detailing.room import soffit_and_top
 from ifccheck.detailing.segments import SAME_PLACE, Kind, Place, Segment
 
-BENT_ASIDE = 50.0
-"""A bar may be bent aside by this at a step in the section and go on [mm]"""
+CARRIED_ON = 0.25
+"""Part of the lesser depth by which a step may move a bar that goes on through it"""
 
 
 @dataclass(frozen=True, slots=True)
@@ -68,13 +68,19 @@ def _stretches(
 def _go_on(segments: Sequence[Segment], held: Sequence[Sequence[Placed]], index: int) -> bool:
     """Whether a bar of the segment before goes on into this one.
 
-    A bar ends at a step in the section that moves its place up or down by more than it may be
-    bent aside.
+    A bar ends at a step in the section that moves its place up or down by more than a part of
+    the lesser depth: carried on there, it would lie nowhere near the face that it belongs to.
     """
     if segments[index].start - segments[index - 1].end > SAME_PLACE:
         return False
+    if not segments[index].stepped:
+        return True
+    depths = [
+        top - soffit
+        for soffit, top in (soffit_and_top(segments[k].outline) for k in (index - 1, index))
+    ]
     moved = abs(held[index][0].z - held[index - 1][0].z)
-    return not segments[index].stepped or moved <= BENT_ASIDE
+    return moved <= CARRIED_ON * min(depths)
 
 
 def _less_favourable(place: Place, middle: float, heights: Sequence[float]) -> float:

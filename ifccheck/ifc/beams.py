@@ -259,6 +259,8 @@ def _told_by_properties(sets: Sets) -> tuple[tuple[str, str], ...]:
 
 def _note_shape(straight: Straight, doubts: _Doubts) -> None:
     doubts.reasons += straight.reasons
+    for told in straight.remarks:
+        doubts.remark(GEOMETRY, told)
     for end, length, steep in zip(("start", "end"), straight.oblique, straight.steep, strict=True):
         _note_oblique(end, length, steep, doubts)
 

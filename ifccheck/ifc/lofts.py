@@ -129,7 +129,17 @@ def _in_space(points: Points, matrix: Matrix) -> Cloud:
 
 
 def require_straight(context: Context, curve: Entity) -> tuple[Cloud, Cloud]:
-    """Return the start and the direction of a curve that is a straight line in space.
+    """Return the start [mm] and the direction of a curve that is a straight line in space.
+
+    Raises UnreadableError where it bends.
+    """
+    start, end = straight_line(context, curve)
+    way = end - start
+    return start, way / np.sqrt(way @ way)
+
+
+def straight_line(context: Context, curve: Entity) -> tuple[Cloud, Cloud]:
+    """Return the start and the end of a curve that is a straight line in space [mm].
 
     Raises UnreadableError where it bends.
     """
@@ -141,7 +151,7 @@ def require_straight(context: Context, curve: Entity) -> tuple[Cloud, Cloud]:
         raise UnreadableError(f"{label(curve)} has no length")
     if np.abs(np.cross(ways, ways[0])).max() > STRAIGHT or (ways @ ways[0]).min() < 0.0:
         raise UnreadableError(f"not straight: it follows {label(curve)}, which bends")
-    return points[0], ways[0]
+    return points[0], points[-1]
 
 
 def _line_points(curve: Entity) -> list[tuple[float, ...]]:

@@ -62,6 +62,8 @@ class Straight:
     """Its sections where they are not the outline from end to end"""
     reasons: tuple[Reason, ...] = ()
     """What keeps it from being adequate"""
+    remarks: tuple[str, ...] = ()
+    """What is doubtful of how it is drawn"""
 
 
 @dataclass(frozen=True, slots=True)
