@@ -45,7 +45,7 @@ def test_points_lie_on_the_spline_and_chords_near_it(weights: list[float] | None
     curve = BSpline(knots, np.column_stack([poles * w[:, None], w]), DEGREE)
     fine = curve(np.linspace(0.0, 3.0, 200001))
     nearest = cKDTree(fine[:, :2] / fine[:, 2:])
-    assert nearest.query(points)[0].max() < 0.02
+    assert nearest.query(points)[0].max() < 0.03
     assert nearest.query((points[1:] + points[:-1]) / 2.0)[0].max() < 1.3 * SAGITTA
     assert points[0] == pytest.approx(POLES[0])
     assert points[-1] == pytest.approx(POLES[-1])
