@@ -28,6 +28,7 @@ from ifccheck.beam import (
 )
 from ifccheck.rating.batch import Batch
 from ifccheck.rating.results import LimitStateRating, Rating
+from ifccheck.rating.runs import outline_of
 from ifccheck.rating.shares import Arising, Shares, arising
 from ifccheck.rating.subject import Subject
 from ifccheck.standards import CalculationLine
@@ -264,7 +265,7 @@ def sheet_maker(
             loads=(*_self_weight(arisen, subject, row), *subject.loads),
             bars=subject.bars,
             stirrups=subject.stirrups,
-            section=_outline_at(subject.beam, section_x),
+            section=outline_of(subject.beam.runs, section_x),
             section_x=section_x,
             checks=checks,
             diagrams=_diagrams(batch, row, rating),
@@ -350,11 +351,6 @@ def _section_x(batch: Batch, row: int, rating: Rating) -> float:
     place = rating.governing.position if rating.governing else math.nan
     span = batch.subjects[row].span
     return place if math.isfinite(place) else (span.start + span.end) / 2.0
-
-
-def _outline_at(beam: Beam, x: float) -> Outline:
-    held = [run for run in beam.runs if run.start <= x]
-    return (held[-1] if held else beam.runs[0]).outline
 
 
 def _diagrams(batch: Batch, row: int, rating: Rating) -> tuple[Diagram, ...]:

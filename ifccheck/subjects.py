@@ -39,6 +39,7 @@ from ifccheck.detailing import Layout, choose_source, lay_out
 from ifccheck.frame.carrying import contacts_of, pressed_ends
 from ifccheck.frame.reactions import loaded_from_side, unknown_reactions
 from ifccheck.frame.spans import Standing, stand_alone
+from ifccheck.rating.shape import shape_reasons
 from ifccheck.rating.subject import Subject, Unrated
 from ifccheck.standards import Standard
 from ifccheck.units import show
@@ -172,6 +173,9 @@ def _one(
         overhang = span_reason(statement, beam, supports)
         findings.reasons += [overhang] if overhang else standing.reasons
         findings.remarks += standing.remarks
+        findings.reasons += shape_reasons(
+            beam.runs, standing.span, standing.faces, sources.standard
+        )
     steel = _steel(beam, sources, findings) if beam.runs else None
     _judge_loads(beam, sources, statement, standing, loads, findings)
     if standing is None or steel is None or any(reason.blocking for reason in findings.reasons):

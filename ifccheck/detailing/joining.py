@@ -10,6 +10,9 @@ from ifccheck.detailing.layers import Placed
 from ifccheck.detailing.room import soffit_and_top
 from ifccheck.detailing.segments import SAME_PLACE, Kind, Place, Segment
 
+CARRIED_ON = 0.25
+"""Part of the lesser depth by which a step may move a bar that goes on through it"""
+
 
 @dataclass(frozen=True, slots=True)
 class _Piece:
@@ -49,20 +52,35 @@ def _stretches(
     first: int | None = None
     for index in range(len(held) + 1):
         here = index < len(held) and bool(held[index])
-        touching = (
-            first is None
-            or not here
-            or segments[index].start - segments[index - 1].end <= SAME_PLACE
-        )
+        touching = first is None or not here or _go_on(segments, held, index)
         if first is not None and (not here or not touching):
             run = [bars[0] for bars in held[first:index]]
             middle = 0.5 * sum(soffit_and_top(segments[first].outline))
             height = _less_favourable(kind.place, middle, [p.z for p in run])
-            pieces.append(_Piece(kind, first, index - 1, run[0].y, height))
+            across = min((p.y for p in run), key=abs)  # the narrowest of them
+            pieces.append(_Piece(kind, first, index - 1, across, height))
             first = None
         if here and first is None:
             first = index
     return pieces
+
+
+def _go_on(segments: Sequence[Segment], held: Sequence[Sequence[Placed]], index: int) -> bool:
+    """Whether a bar of the segment before goes on into this one.
+
+    A bar ends at a step in the section that moves its place up or down by more than a part of
+    the lesser depth: carried on there, it would lie nowhere near the face that it belongs to.
+    """
+    if segments[index].start - segments[index - 1].end > SAME_PLACE:
+        return False
+    if not segments[index].stepped:
+        return True
+    depths = [
+        top - soffit
+        for soffit, top in (soffit_and_top(segments[k].outline) for k in (index - 1, index))
+    ]
+    moved = abs(held[index][0].z - held[index - 1][0].z)
+    return moved <= CARRIED_ON * min(depths)
 
 
 def _less_favourable(place: Place, middle: float, heights: Sequence[float]) -> float:

@@ -129,6 +129,12 @@ class _Findings:
             self.remark(f"bars laid out: {_summary(bars)}", "note")
         if any(Anchor.ANCHORED in (bar.start_anchor, bar.end_anchor) for bar in bars):
             self.remark("bars given without their ends are taken as anchored", "assumption")
+        if bars and any(run.outline_end is not None for run in self.beam.runs):
+            self.remark(
+                "where the section tapers, bars lie at the less favourable height of its ends, and"
+                " their force is that of bars inclined as the face beside them",
+                "assumption",
+            )
         for face in self.silent:
             self.remark(f"{face} bars not stated: taken as none", "assumption")
         if not known:

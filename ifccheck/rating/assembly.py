@@ -4,7 +4,6 @@ from __future__ import annotations
 
 from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
-from functools import lru_cache
 from typing import Any
 
 import numpy as np
@@ -24,7 +23,18 @@ from ifccheck.mechanics.arrays import (
     Stations,
 )
 from ifccheck.mechanics.spacing import distance_to_surface, nearest_neighbour
-from ifccheck.mechanics.width_profile import overhangs, pack_strips, strips_of
+from ifccheck.mechanics.width_profile import pack_strips
+from ifccheck.rating.disturbed import disturbed
+from ifccheck.rating.runs import (
+    RunTable,
+    along_axis,
+    chords_at,
+    outlines_along,
+    profile_of,
+    run_table,
+    sections_at,
+    weighed_parts,
+)
 from ifccheck.rating.subject import Subject
 
 END_COVER = 100.0
@@ -36,19 +46,6 @@ _ANCHOR = {
     Anchor.HOOK: ANCHOR_HOOK,
     Anchor.ANCHORED: ANCHOR_FULL,
 }
-
-
-@dataclass(frozen=True, slots=True)
-class RunTable:
-    """The runs of all beams, one row each (R), sorted by beam and start."""
-
-    beam: Ints
-    start: Floats
-    end: Floats
-    section: Ints
-    """Row of Members.strips"""
-    area: Floats
-    """[mm2]"""
 
 
 @dataclass(frozen=True, slots=True)
@@ -65,6 +62,34 @@ class StirrupTable:
 
 
 @dataclass(frozen=True, slots=True)
+class Stretches:
+    """Stretches of beams, one row each (D), in any order."""
+
+    beam: Ints
+    start: Floats
+    end: Floats
+
+    def hold(self, beam: Ints, x: Floats) -> Bools:
+        """Whether each place of a beam lies within one of its stretches (N)."""
+        held = np.zeros(x.shape, dtype=np.bool_)
+        for row, start, end in zip(self.beam, self.start, self.end, strict=True):
+            held |= (beam == row) & (x > start + SAME_PLACE) & (x < end - SAME_PLACE)
+        return held
+
+
+def disturbed_stretches(subjects: Sequence[Subject]) -> Stretches:
+    """The stretches beside steps of all beams."""
+    rows = [
+        (beam, stretch.start, stretch.end)
+        for beam, subject in enumerate(subjects)
+        if len(subject.beam.runs) > 1 or subject.beam.runs[0].outline_end is not None
+        for stretch in disturbed(subject.beam.runs)
+    ]
+    beam, start, end = np.array(rows, dtype=np.float64).reshape(-1, 3).T
+    return Stretches(beam.astype(np.intp), start, end)
+
+
+@dataclass(frozen=True, slots=True)
 class Frame:
     """The batch as tables, before stations."""
 
@@ -75,8 +100,12 @@ class Frame:
     faces: Floats
     """(B, 2)"""
     loads: LoadTable
+    self_case: int
+    """Row of the case that self weight makes"""
     checked: Floats
     """Where checks begin and end on each beam [mm] (B, 2)"""
+    disturbed: Stretches
+    """Where nothing is checked"""
     side_loaded: Bools
     """Members frame into the side of the beam: its loads do not compress its top (B)"""
 
@@ -90,16 +119,8 @@ def frame_of(subjects: Sequence[Subject], cases: Sequence[Case]) -> Frame:
     stated = load_table(
         [load for subject in subjects for load in subject.loads], row_of_beam, row_of_case
     )
-    first, last = _first_of(runs.beam), _last_of(runs.beam)
-    weight = self_weight_lines(
-        beam=runs.beam,
-        case=row_of_case[SELF],
-        start=np.where(first, np.minimum(runs.start, spans.start[runs.beam]), runs.start),
-        end=np.where(last, np.maximum(runs.end, spans.end[runs.beam]), runs.end),
-        area_start=runs.area,
-        area_end=runs.area,
-        unit_weight=np.array([subject.unit_weight.value for subject in subjects])[runs.beam],
-    )
+    unit_weights = np.array([subject.unit_weight.value for subject in subjects])
+    weight = _self_weight(runs, spans, row_of_case[SELF], unit_weights)
     members = members_of(subjects, outlines)
     lengths = np.array([subject.beam.length for subject in subjects])
     return Frame(
@@ -109,8 +130,25 @@ def frame_of(subjects: Sequence[Subject], cases: Sequence[Case]) -> Frame:
         spans=spans,
         faces=np.array([subject.faces for subject in subjects]),
         loads=join_loads(stated, weight),
+        self_case=row_of_case[SELF],
         checked=checked_stretch(members, spans, lengths),
+        disturbed=disturbed_stretches(subjects),
         side_loaded=np.array([subject.side_loaded for subject in subjects]),
+    )
+
+
+def _self_weight(runs: RunTable, spans: SpanTable, case: int, unit_weights: Floats) -> LoadTable:
+    """The weight of all runs; that of the first and last reaches as far as the span does."""
+    row, start, end, area_start, area_end = weighed_parts(runs)
+    beam = runs.beam[row]
+    return self_weight_lines(
+        beam=beam,
+        case=case,
+        start=np.where(_first_of(beam), np.minimum(start, spans.start[beam]), start),
+        end=np.where(_last_of(beam), np.maximum(end, spans.end[beam]), end),
+        area_start=area_start,
+        area_end=area_end,
+        unit_weight=unit_weights[beam],
     )
 
 
@@ -122,39 +160,6 @@ def _first_of(beam: Ints) -> Bools:
 def _last_of(beam: Ints) -> Bools:
     """Whether each row is the last of its beam."""
     return np.append(beam[1:] != beam[:-1], True)[: beam.size]
-
-
-@dataclass(frozen=True, slots=True)
-class Profile:
-    """What is measured of an outline."""
-
-    strips: Floats
-    overhangs: tuple[float, float, float]
-    """To the left, to the right, and the thickness of that flange [mm]"""
-    area: float
-    """[mm2]"""
-
-
-@lru_cache(maxsize=4096)  # few outlines make most buildings
-def profile_of(outline: Outline) -> Profile:
-    """Measure an outline."""
-    strips = strips_of(outline.rings)
-    area = float(np.sum((strips[:, 1] - strips[:, 0]) * (strips[:, 2] + strips[:, 3]) / 2.0))
-    return Profile(strips, overhangs(outline.rings), area)
-
-
-def run_table(subjects: Sequence[Subject]) -> tuple[RunTable, tuple[Outline, ...]]:
-    """Number the distinct outlines and list where each beam has which."""
-    rows: dict[Outline, int] = {}
-    table = [
-        (beam, run.start, run.end, rows.setdefault(run.outline, len(rows)))
-        for beam, subject in enumerate(subjects)
-        for run in subject.beam.runs
-    ]
-    beam, start, end, section = (np.array(column) for column in zip(*table, strict=True))
-    outlines = tuple(rows)
-    areas = np.array([profile_of(outline).area for outline in outlines])
-    return RunTable(beam, start, end, section, areas[section]), outlines
 
 
 def members_of(subjects: Sequence[Subject], outlines: Sequence[Outline]) -> Members:
@@ -194,7 +199,11 @@ def _layers(subjects: Sequence[Subject]) -> dict[str, Any]:
 
     return {
         "layer_height": packed(bar.z for bar in bars),
-        "layer_area": packed(bar.count * bar.area for bar in bars),
+        "layer_area": packed(
+            bar.count * bar.area * along_axis(subject, bar)
+            for subject in subjects
+            for bar in subject.bars
+        ),
         "layer_bar_area": packed((bar.area for bar in bars), 1.0),
         "layer_diameter": packed((bar.diameter for bar in bars), 1.0),
         "layer_yield": packed((g.value for s in subjects for g in s.bar_yield), 400.0),
@@ -231,7 +240,7 @@ def cover_distances(subjects: Sequence[Subject]) -> Floats:
 
 
 def _to_surface(subjects: Sequence[Subject], y: Floats, z: Floats, counts: Ints) -> Floats:
-    """Distance of each bar from the surface of its beam's first section [mm]."""
+    """Distance of each bar from the surface of the sections that it runs through [mm]."""
     rows: dict[Outline, int] = {}
     outlines = [subject.beam.runs[0].outline for subject in subjects]
     section = np.array([rows.setdefault(outline, len(rows)) for outline in outlines])
@@ -240,7 +249,22 @@ def _to_surface(subjects: Sequence[Subject], y: Floats, z: Floats, counts: Ints)
     for outline, row in rows.items():
         bars = np.flatnonzero(of_bar == row)
         distance[bars] = distance_to_surface(y[bars], z[bars], outline.rings)
+    first = np.cumsum(counts) - counts
+    for subject, start in zip(subjects, first.tolist(), strict=True):
+        if len(subject.beam.runs) > 1 or subject.beam.runs[0].outline_end is not None:
+            _among_sections(subject, y, z, distance, start)
     return distance
+
+
+def _among_sections(subject: Subject, y: Floats, z: Floats, distance: Floats, first: int) -> None:
+    """Put in the distances of the bars of one beam whose sections vary, from row ``first`` on."""
+    for layer in subject.bars:
+        bars = slice(first, first + len(layer.ys))
+        outlines = outlines_along(subject.beam.runs, layer.start, layer.end)
+        distance[bars] = np.min(
+            [distance_to_surface(y[bars], z[bars], outline.rings) for outline in outlines], axis=0
+        )
+        first = bars.stop
 
 
 def _spacing(y: Floats, z: Floats, start: Floats, end: Floats, counts: Ints) -> Floats:
@@ -267,29 +291,36 @@ def stirrup_table(subjects: Sequence[Subject]) -> StirrupTable:
 
 
 def make_station_arrays(
-    beam: Ints, x: Floats, side: Ints, runs: RunTable, zones: StirrupTable, faces: Floats
-) -> Stations:
+    frame: Frame, beam: Ints, x: Floats, side: Ints
+) -> tuple[Members, Stations]:
     """Look up section and stirrups at every station.
 
     Parameters
     ----------
+    frame
+        Sections and stirrups along the beams, and the faces of their supports.
     beam, x, side
         The stations (N).
-    runs, zones
-        Sections and stirrups along the beams.
-    faces
-        Faces of the two supports of each beam [mm] (B, 2).
+
+    Returns
+    -------
+    tuple
+        The members, with a section for every station in a taper, and the stations.
     """
-    area, spacing, strength = _stirrups_at(beam, x, side, zones)
-    return Stations(
+    area, spacing, strength = _stirrups_at(beam, x, side, frame.zones)
+    runs = frame.runs
+    row = _row_at(beam, x, side, runs.beam, runs.start)
+    members, section = sections_at(frame.members, runs, row, x)
+    return members, Stations(
         beam=beam,
-        section=runs.section[_row_at(beam, x, side, runs.beam, runs.start)],
+        section=section,
         x=x,
         side=side,
         stirrup_area=area,
         stirrup_spacing=spacing,
         stirrup_yield=strength,
-        inside=_between(x, faces[beam]),
+        inside=_between(x, frame.faces[beam]),
+        chords=chords_at(runs, row),
     )
 
 

@@ -11,6 +11,7 @@ from ifccheck.mechanics.arrays import (
     ANCHOR_FULL,
     ANCHOR_HOOK,
     Bools,
+    Chords,
     Floats,
     Ints,
     Members,
@@ -76,6 +77,8 @@ class Prepared:
     """A longitudinal bar's fy exceeds 500 MPa (8.5.1)"""
     surroundings: Surroundings
     """Faces and critical sections as seen from each station: critical.surroundings(...)"""
+    chords: Chords | None
+    """How the chords are inclined; None where none is"""
 
     def take(self, rows: Ints) -> Prepared:
         """The same at the given stations; rows may repeat."""
@@ -125,6 +128,7 @@ def prepare(members: Members, stations: Stations, options: Options) -> Prepared:
         beyond_concrete_strength=materials.beyond_concrete_strength(strength),
         beyond_yield=materials.beyond_yield(steel_yield),
         surroundings=_surroundings(stations, sagging, hogging, options),
+        chords=stations.chords,
     )
 
 
