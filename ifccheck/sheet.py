@@ -316,7 +316,8 @@ def _self_weight(arisen: Arising, subject: Subject, row: int) -> Iterator[Load]:
     weight = show(subject.unit_weight.value, "unit_weight").replace(".0 ", " ")
     for i in np.flatnonzero(table.beam == row).tolist():
         values = float(table.value_start[i]), float(table.value_end[i])
-        text = f"{show(values[0], 'line_load')} (self weight, {weight})"
+        both = dict.fromkeys(show(value, "line_load") for value in values)
+        text = f"{' to '.join(both)} (self weight, {weight})"
         yield Load(
             subject.beam.key, SELF, "line", float(table.start[i]), float(table.end[i]), values,
             origin=f"outline; {subject.unit_weight.source}", text=text,

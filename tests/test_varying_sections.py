@@ -12,7 +12,9 @@ import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
 
-from ifccheck.beam import Bars, Outline, Run, Verdict
+from ifccheck.beam import Anchor, BarGroup, Bars, DescribedZone, Outline, Run, Verdict
+from ifccheck.detailing import lay_out
+from ifccheck.notation import bars_in_a_row
 from ifccheck.rating.disturbed import disturbed
 from ifccheck.rating.results import LimitStateRating, Rating
 from ifccheck.rating.shape import shape_reasons
@@ -287,7 +289,7 @@ def test_every_printed_line_of_an_inclined_chord_gives_its_number(method: str) -
             assert eval(each.formula, {"__builtins__": {}}, allowed | known) == pytest.approx(value)
         known[each.symbol] = value
         printed.append(each.symbol)
-    assert {"Vo", "iu", "il"} <= set(printed)
+    assert {"Vo", "iu", "il", "Vu", "Vl"} <= set(printed)
     assert known["iu"] == pytest.approx(0.1)
     assert known["il"] == 0.0
     assert known["Vf"] > known["Vo"]
@@ -402,3 +404,58 @@ def test_cover_is_the_least_along_the_bar() -> None:
     short: tuple[Bars, ...] = (replace(bars[0], end=3000.0),)
     found = cover_distances([with_runs(replace(beam, bars=short), *runs)])[0]
     assert found == pytest.approx(min(150.0, 212.0), rel=0.01)
+
+
+# Bars given by number ---------------------------------------------------------------------------
+
+
+def laid_out(runs: list[Run], **zones: tuple[BarGroup, ...]) -> tuple[Bars, ...]:
+    beam = with_runs(subject(), *runs).beam
+    zone = DescribedZone(cover=40.0, no_stirrups=True, origin="test", **zones)
+    layout = lay_out(beam, [zone], clear_spacing=lambda diameter: 1.4 * diameter)
+    assert layout.reasons == ()
+    return layout.bars
+
+
+BOTTOM, TOP = BarGroup(3, "25M", 25.2, 500.0), BarGroup(2, "20M", 19.5, 300.0)
+
+
+def test_bars_given_by_number_never_cross_to_the_other_half() -> None:
+    """The soffit rises by two thirds of the depth: bottom bars rise with it, and stay near it,
+    so that they are never taken for top bars at the deep end."""
+    runs = taper((0.0, box(300, 0, 900)), (LENGTH, box(300, 600, 900)))
+    bars = laid_out(runs, bottom=(BOTTOM,), top=(TOP,))
+    bottom = [bar for bar in bars if bar.designation == "25M"]
+    top = [bar for bar in bars if bar.designation == "20M"]
+    assert len(bottom) > 3
+    assert len(top) == 1
+    for bar in bottom:
+        soffits = [600.0 * x / LENGTH for x in (bar.start, bar.end)]
+        assert bar.z == pytest.approx(max(soffits) + 40.0 + 12.6, abs=1e-6)
+        assert all(bar.z < (soffit + 900.0) / 2.0 for soffit in soffits)
+    assert [a.end for a in bottom[:-1]] == [b.start for b in bottom[1:]]
+    assert (bottom[0].start, bottom[-1].end) == (0.0, LENGTH)
+    assert len(bars_in_a_row(bars)) == 2
+
+
+def test_pieces_of_a_bar_are_developed_only_far_from_its_end() -> None:
+    """Bottom bars from 1 m to 5 m along a taper: near their ends no piece counts as anchored."""
+    runs = taper((0.0, box(300, 0, 900)), (LENGTH, box(300, 300, 900)))
+    beam = with_runs(subject(), *runs).beam
+    here = DescribedZone(1000.0, 5000.0, bottom=(BOTTOM,), cover=40.0, no_stirrups=True)
+    layout = lay_out(beam, [here], clear_spacing=lambda diameter: 1.4 * diameter)
+    assert len(layout.bars) == 4
+    for bar in layout.bars:
+        before, behind = bar.start - 1000.0, 5000.0 - bar.end
+        assert (bar.start_anchor is Anchor.ANCHORED) == (before >= 100.0 * 25.2)
+        assert (bar.end_anchor is Anchor.ANCHORED) == (behind >= 100.0 * 25.2)
+
+
+def test_bars_given_by_number_end_at_a_deep_step() -> None:
+    deep, nib = box(300, 0, 600), box(300, 300, 600)
+    bars = laid_out([Run(0.0, 300.0, nib), Run(300.0, LENGTH, deep)], bottom=(BOTTOM,), top=(TOP,))
+    bottom = sorted((bar.start, bar.end, bar.z) for bar in bars if bar.designation == "25M")
+    assert bottom == [
+        (0.0, 300.0, pytest.approx(352.6)), (300.0, LENGTH, pytest.approx(52.6)),
+    ]  # fmt: skip
+    assert [(b.start, b.end) for b in bars if b.designation == "20M"] == [(0.0, LENGTH)]

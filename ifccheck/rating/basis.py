@@ -12,6 +12,7 @@ import numpy as np
 from ifccheck.beam import Bars, Given, Outline, Stirrups, Support
 from ifccheck.mechanics.arrays import Ints
 from ifccheck.mechanics.outlines import bounds
+from ifccheck.notation import bars_in_a_row
 from ifccheck.rating.batch import Batch
 from ifccheck.rating.elements import first_greatest
 from ifccheck.rating.results import BasisItem, LimitStateRating
@@ -127,12 +128,19 @@ def _middle_of(outline: Outline) -> float:
 
 
 def _bars_text(bars: Sequence[Bars]) -> str:
-    texts = [
-        f"{bar.count}-{bar.designation or show(bar.diameter, 'dimension')} at z = "
-        f"{show(bar.z, 'dimension')}, x = {show(bar.start, 'length')} to {show(bar.end, 'length')}"
-        for bar in sorted(bars, key=lambda bar: bar.z)
-    ]
-    return "; ".join(texts) or "none"
+    rows = sorted(bars_in_a_row(bars), key=lambda row: row[0].z)
+    return "; ".join(map(_row_text, rows)) or "none"
+
+
+def _row_text(row: Sequence[Bars]) -> str:
+    first, last = row[0], row[-1]
+    heights = dict.fromkeys(
+        show(z, "dimension") for z in (min(b.z for b in row), max(b.z for b in row))
+    )
+    return (
+        f"{first.count}-{first.designation or show(first.diameter, 'dimension')} at z = "
+        f"{' to '.join(heights)}, x = {show(first.start, 'length')} to {show(last.end, 'length')}"
+    )
 
 
 def _stirrups_text(subject: Subject) -> str:

@@ -43,6 +43,9 @@ class ShearDetails:
     """Rise of the upper chord for each mm, positive where it adds to the shear"""
     lower_rise: Floats
     """The same of the lower chord"""
+    upper_shear: Floats
+    """Vertical component of the upper chord [N]"""
+    lower_shear: Floats
     level: Bools
     """No chord is inclined"""
     inclined: Bools
@@ -204,6 +207,8 @@ def _chords(web: Web, demand: Demand) -> dict[str, Any]:
         "shear_of_loads": np.abs(demand.critical_shear),
         "upper_rise": none + upper,
         "lower_rise": none + lower,
+        "upper_shear": upper * np.abs(demand.moment) / web.shear_depth,
+        "lower_shear": lower * np.abs(demand.moment) / web.shear_depth,
         "level": ~inclined,
         "inclined": inclined,
     }
