@@ -31,14 +31,20 @@ from ifccheck.rating.assembly import (
     make_station_arrays,
     within,
 )
-from ifccheck.rating.elements import Elements, distinct_elements, first_greatest
-from ifccheck.rating.factors import Factors, evaluate_everywhere, rating_factors
+from ifccheck.rating.elements import (
+    Elements,
+    Found,
+    distinct_elements,
+    evaluate,
+    first_greatest,
+)
+from ifccheck.rating.factors import Factors, rating_factors
 from ifccheck.rating.subject import Subject
 from ifccheck.rating.turning import Growth, with_turns
 from ifccheck.rating.uplift import Uplift, uplift_of
 from ifccheck.rating.utilisation import worst_of
 from ifccheck.rating.verdict import Evaluated
-from ifccheck.standards import LimitState, Note, Options, Quick, Standard
+from ifccheck.standards import LimitState, Note, Options, Standard
 
 BATCH = 400
 """Beams rated together"""
@@ -152,10 +158,8 @@ def rate_frame(
         unbounded=frame.side_loaded,
     )
     elements = distinct_elements(acting, stations.beam)
-    evaluations = [
-        (quick, quick.basis(prepared).take(elements.station)) for quick in standard.quick
-    ]
-    found = _found(standard, evaluations, elements)
+    found = [evaluate(quick, quick.basis(prepared), elements) for quick in standard.quick]
+    known = _by_state(standard, found)
     factors = factor_array(combinations, cases)
     return Batch(
         subjects=tuple(subjects),
@@ -163,10 +167,10 @@ def rate_frame(
         first=stations.first_rows(len(subjects)),
         prepared=prepared,
         demand=acting.total,
-        states=_states(standard, prepared, acting.total, found, elements),
+        states=_states(standard, prepared, acting.total, known, elements),
         factors={
             cases[row].name: with_turns(
-                rating_factors(standard.limit_states, evaluations, elements, share, stations.x),
+                rating_factors(standard.limit_states, found, elements, share, stations.x),
                 Growth(frame, effects, row, factors),
                 standard,
                 options,
@@ -174,7 +178,7 @@ def rate_frame(
             for row, share in zip(acting.scaled, elements.shares, strict=True)
         },
         places=_places(subjects, cases, combinations, effects, stations),
-        envelope=_envelope(standard, acting.total, found, elements),
+        envelope=_envelope(standard, acting.total, known, elements),
         uplift=uplift_of(effects, frame.spans),
         notes=standard.notes(prepared),
         basis=standard.basis(prepared),
@@ -194,16 +198,14 @@ def _states(
     )
 
 
-def _found(
-    standard: Standard, evaluations: Sequence[tuple[Quick, Any]], elements: Elements
-) -> list[tuple[Floats, Floats]]:
+def _by_state(standard: Standard, found: Sequence[Found]) -> list[tuple[Floats, Floats]]:
     """Utilisation and resistance of each limit state of the standard at the elements."""
-    found = {}
-    for quick, basis in evaluations:
-        every = evaluate_everywhere(quick, basis, elements)
-        for state, utilisation, resistance in zip(quick.states, *every, strict=True):
-            found[state.name] = utilisation, resistance
-    return [found[state.name] for state in standard.limit_states]
+    known = {
+        state.name: values
+        for one in found
+        for state, *values in zip(one.quick.states, one.utilisation, one.resistance, strict=True)
+    }
+    return [tuple(known[state.name]) for state in standard.limit_states]
 
 
 def _places(

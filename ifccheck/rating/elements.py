@@ -2,20 +2,24 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
-from typing import TypeVar
+from typing import Any, TypeVar
 
 import numpy as np
 
 from ifccheck.analysis.effects import Demands
 from ifccheck.mechanics.arrays import Bools, Demand, Floats, Ints
+from ifccheck.standards import Quick
 
 Values = TypeVar("Values", Floats, Bools)
 
 NUMBERS = ("moment", "shear", "critical_shear", "peak_sagging", "peak_hogging")
 """Fields of a Demand that grow with the loads"""
 _ACTING = NUMBERS[:3]
+
+AT_ONCE = 16384
+"""Elements evaluated together, so that their arrays stay in the processor's cache"""
 
 
 @dataclass(frozen=True, slots=True)
@@ -45,6 +49,35 @@ class Elements:
     def demand(self, rows: slice) -> Demand:
         """What acts at a stretch of the elements."""
         return demand_of(self.total[:, rows], self.can_sag[rows], self.can_hog[rows])
+
+
+@dataclass(frozen=True, slots=True)
+class Found:
+    """Limit states (S) at the elements (E), under the loads as they are."""
+
+    quick: Quick
+    basis: Any
+    """What they need of each station"""
+    utilisation: Floats
+    """(S, E)"""
+    resistance: Floats
+    """(S, E)"""
+
+
+def evaluate(quick: Quick, basis: Any, elements: Elements) -> Found:
+    """Utilisation and resistance of limit states at all elements."""
+    utilisation, resistance = np.empty((2, len(quick.states), elements.element.size))
+    for rows in stretches(elements.element.size):
+        evaluated = quick.evaluate(basis.take(elements.station[rows]), elements.demand(rows))
+        for state, found in enumerate(evaluated):
+            utilisation[state, rows], resistance[state, rows] = found
+    return Found(quick, basis, utilisation, resistance)
+
+
+def stretches(size: int) -> Iterator[slice]:
+    """Elements, so many at a time that arrays stay in the processor's cache."""
+    for start in range(0, size, AT_ONCE):
+        yield slice(start, min(start + AT_ONCE, size))
 
 
 def demand_of(numbers: Floats, can_sag: Bools, can_hog: Bools) -> Demand:
@@ -81,8 +114,8 @@ def distinct_elements(acting: Demands, beam: Ints) -> Elements:
         element=element,
         station=station,
         beam=beam[station],
-        first_of_station=np.flatnonzero(np.diff(station, prepend=-1)),
-        first_of_beam=np.flatnonzero(np.diff(beam[station], prepend=-1)),
+        first_of_station=starts(station),
+        first_of_beam=starts(beam[station]),
         total=numbers(acting.total),
         shares=tuple(numbers(share) for share in acting.shares),
         can_sag=at(acting.total.can_sag),
@@ -119,11 +152,18 @@ def _gather(values: Values, combination: Ints, station: Ints, element: Ints) -> 
     return first.reshape(-1)[rows]
 
 
+def starts(sorted_values: Ints) -> Ints:
+    """First row of each stretch of equal values."""
+    new = np.ones(sorted_values.size, dtype=np.bool_)
+    np.not_equal(sorted_values[1:], sorted_values[:-1], out=new[1:])
+    return np.flatnonzero(new)
+
+
 def greatest_of_beams(values: Floats, beam: Ints, beams: int) -> Floats:
     """Greatest value of each beam (B), -inf where it has none; beams ascend."""
     greatest = np.full(beams, -np.inf)
     if beam.size:
-        first = np.flatnonzero(np.diff(beam, prepend=-1))
+        first = starts(beam)
         greatest[beam[first]] = np.maximum.reduceat(values, first)
     return greatest
 

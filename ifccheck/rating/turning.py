@@ -16,7 +16,7 @@ from ifccheck.analysis.statics import case_effects
 from ifccheck.analysis.stations import StationTable, rows_before
 from ifccheck.mechanics.arrays import Bools, Floats, Ints
 from ifccheck.rating.assembly import Frame, make_station_arrays
-from ifccheck.rating.elements import distinct_elements
+from ifccheck.rating.elements import distinct_elements, evaluate
 from ifccheck.rating.factors import Factors, rating_factors
 from ifccheck.standards import Options, Standard
 
@@ -88,13 +88,13 @@ def _factors_at(
     beams, row = np.unique(beam, return_inverse=True)
     elements = distinct_elements(acting, row)
     prepared = standard.prepare(frame.members, arrays, options)
-    evaluations = [
-        (quick, quick.basis(prepared).take(elements.station))
+    there = [
+        evaluate(quick, quick.basis(prepared), elements)
         for quick in standard.quick
-        if quick.linear
+        if quick.demanded is not None
     ]
     lower = rating_factors(
-        standard.limit_states, evaluations, elements, elements.shares[0], x, found.factor[beams]
+        standard.limit_states, there, elements, elements.shares[0], x, found.factor[beams]
     )
     return _lowered(found, lower, beams, growth, x.size)
 

@@ -16,7 +16,7 @@ REACH = 1e-5
 class Surroundings:
     """The critical section and the faces as seen from each station; one row per station (N)."""
 
-    simplified: Bools
+    simplified: bool
     """Shear by 11.3.6.3, else by 11.3.6.4"""
     critical_distance: Floats
     """Distance to the critical section at dv from the nearer face [mm]; 0 beyond it"""
@@ -117,7 +117,7 @@ def surroundings(
     )
     rows, reach = _critical_rows(x, start, end, distance, first, counts)
     return Surroundings(
-        simplified=np.full(x.shape, simplified),
+        simplified=simplified,
         critical_distance=reach,
         critical_area_sagging=sagging_area[rows],
         critical_area_hogging=hogging_area[rows],
