@@ -9,7 +9,16 @@ from typing import Any
 import numpy as np
 
 from ifccheck.analysis.combinations import factor_array
-from ifccheck.analysis.effects import Effects, combine, demands, turning_places
+from ifccheck.analysis.effects import (
+    GREATEST_MOMENT,
+    GREATEST_SHEAR,
+    LEAST_MOMENT,
+    LEAST_SHEAR,
+    Effects,
+    combine,
+    demands,
+    turning_places,
+)
 from ifccheck.analysis.loads import LINE
 from ifccheck.analysis.spans import FREE
 from ifccheck.analysis.statics import CaseEffects, case_effects, join_effects
@@ -31,20 +40,14 @@ from ifccheck.rating.assembly import (
     make_station_arrays,
     within,
 )
-from ifccheck.rating.elements import (
-    Elements,
-    Found,
-    distinct_elements,
-    evaluate,
-    first_greatest,
-)
+from ifccheck.rating.elements import Elements, distinct_elements
 from ifccheck.rating.factors import Factors, rating_factors
 from ifccheck.rating.subject import Subject
 from ifccheck.rating.turning import Growth, with_turns
 from ifccheck.rating.uplift import Uplift, uplift_of
-from ifccheck.rating.utilisation import worst_of
+from ifccheck.rating.utilisation import Peaks, by_state, evaluate, worst_of
 from ifccheck.rating.verdict import Evaluated
-from ifccheck.standards import LimitState, Note, Options, Standard
+from ifccheck.standards import Note, Options, Standard
 
 BATCH = 400
 """Beams rated together"""
@@ -157,9 +160,9 @@ def rate_frame(
         rated,
         unbounded=frame.side_loaded,
     )
-    elements = distinct_elements(acting, stations.beam)
+    elements = distinct_elements(effects, acting, stations.beam)
     found = [evaluate(quick, quick.basis(prepared), elements) for quick in standard.quick]
-    known = _by_state(standard, found)
+    peaks = by_state(found)
     factors = factor_array(combinations, cases)
     return Batch(
         subjects=tuple(subjects),
@@ -167,7 +170,7 @@ def rate_frame(
         first=stations.first_rows(len(subjects)),
         prepared=prepared,
         demand=acting.total,
-        states=_states(standard, prepared, acting.total, known, elements),
+        states=_states(standard, prepared, acting.total, peaks, elements),
         factors={
             cases[row].name: with_turns(
                 rating_factors(standard.limit_states, found, elements, share, stations.x),
@@ -178,7 +181,7 @@ def rate_frame(
             for row, share in zip(acting.scaled, elements.shares, strict=True)
         },
         places=_places(subjects, cases, combinations, effects, stations),
-        envelope=_envelope(standard, acting.total, known, elements),
+        envelope=_envelope(acting.total, peaks),
         uplift=uplift_of(effects, frame.spans),
         notes=standard.notes(prepared),
         basis=standard.basis(prepared),
@@ -189,23 +192,17 @@ def _states(
     standard: Standard,
     prepared: Any,
     demand: Demand,
-    found: Sequence[tuple[Floats, Floats]],
+    peaks: dict[str, Peaks],
     elements: Elements,
 ) -> tuple[Evaluated, ...]:
-    return tuple(
-        _evaluated(state, prepared, demand, utilisation, elements)
-        for state, (utilisation, _) in zip(standard.limit_states, found, strict=True)
-    )
-
-
-def _by_state(standard: Standard, found: Sequence[Found]) -> list[tuple[Floats, Floats]]:
-    """Utilisation and resistance of each limit state of the standard at the elements."""
-    known = {
-        state.name: values
-        for one in found
-        for state, *values in zip(one.quick.states, one.utilisation, one.resistance, strict=True)
-    }
-    return [tuple(known[state.name]) for state in standard.limit_states]
+    """The limit states of the standard where each beam's utilisation is the greatest."""
+    found = []
+    for state in standard.limit_states:
+        worst = worst_of(peaks[state.name], elements)
+        places = np.unravel_index(worst.shown, demand.moment.shape)
+        check = state.check(prepared.take(places[-1]), demand.at(places))
+        found.append(Evaluated(state, worst, check))
+    return tuple(found)
 
 
 def _places(
@@ -280,7 +277,7 @@ def _effects(
         return case_effects(frame.spans, frame.loads, where, len(cases), deflections=False)
 
     found = at(stations)
-    beam, x = turning_places(combine(found, factors, arrangements=2))
+    beam, x = turning_places(found, factors)
     turns = StationTable(beam, x, np.zeros_like(beam))
     stations, rows = insert_stations(stations, beam, x)
     return combine(join_effects(found, at(turns), rows), factors), stations
@@ -309,36 +306,12 @@ def _fixed_places(frame: Frame, critical: Floats) -> list[Places]:
     ]
 
 
-def _evaluated(
-    state: LimitState, prepared: Any, demand: Demand, utilisation: Floats, elements: Elements
-) -> Evaluated:
-    worst = worst_of(utilisation, elements.element, elements.first_of_beam)
-    places = np.unravel_index(worst.shown, demand.moment.shape)
-    return Evaluated(state, worst, state.check(prepared.take(places[-1]), demand.at(places)))
-
-
-def _envelope(
-    standard: Standard,
-    demand: Demand,
-    found: Sequence[tuple[Floats, Floats]],
-    elements: Elements,
-) -> Envelope:
-    """Extremes of demand, and resistances, from the utilisation and resistance at elements."""
-    stations = demand.moment.shape[-1]
-    moment, shear = demand.moment.reshape(-1, stations), demand.shear.reshape(-1, stations)
+def _envelope(demand: Demand, peaks: dict[str, Peaks]) -> Envelope:
+    """Extremes of demand, which are each an arrangement's own, and resistances."""
     return Envelope(
-        moment.max(axis=0),
-        moment.min(axis=0),
-        shear.max(axis=0),
-        shear.min(axis=0),
-        {
-            state.name: resistance[_worst_elements(utilisation, elements)]
-            for state, (utilisation, resistance) in zip(standard.limit_states, found, strict=True)
-        },
+        demand.moment[:, GREATEST_MOMENT].max(axis=0),
+        demand.moment[:, LEAST_MOMENT].min(axis=0),
+        demand.shear[:, GREATEST_SHEAR].max(axis=0),
+        demand.shear[:, LEAST_SHEAR].min(axis=0),
+        {name: each.resistance for name, each in peaks.items()},
     )
-
-
-def _worst_elements(utilisation: Floats, elements: Elements) -> Ints:
-    """Row of the greatest utilisation of each station (N), one that is not known before all."""
-    known = np.where(np.isnan(utilisation), np.inf, utilisation)
-    return first_greatest(known, elements.first_of_station)[1]

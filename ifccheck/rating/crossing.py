@@ -14,15 +14,10 @@ from typing import Any
 
 import numpy as np
 
+from ifccheck.analysis.stations import starts
 from ifccheck.mechanics.arrays import Bools, Floats, Ints
-from ifccheck.rating.elements import (
-    Elements,
-    Found,
-    demand_of,
-    greatest_of_beams,
-    starts,
-    stretches,
-)
+from ifccheck.rating.elements import Elements, demand_of, greatest_of_beams, stretches
+from ifccheck.rating.utilisation import Found
 from ifccheck.standards import Quick
 
 _TOLERANCE = 1e-9
@@ -123,13 +118,13 @@ class _Growing:
         """The same at some of the elements."""
         return replace(
             self,
-            station=self.station[rows],
-            total=self.total[:, rows],
-            share=self.share[:, rows],
-            can_sag=self.can_sag[rows],
-            can_hog=self.can_hog[rows],
-            beam=self.beam[rows],
-            element=self.element[rows],
+            station=self.station.take(rows, mode="clip"),
+            total=self.total.take(rows, axis=1, mode="clip"),
+            share=self.share.take(rows, axis=1, mode="clip"),
+            can_sag=self.can_sag.take(rows, mode="clip"),
+            can_hog=self.can_hog.take(rows, mode="clip"),
+            beam=self.beam.take(rows, mode="clip"),
+            element=self.element.take(rows, mode="clip"),
         )
 
 
@@ -160,15 +155,16 @@ def least_crossing(found: Found, elements: Elements, share: Floats, ceiling: Flo
         found.quick, found.basis, e.station, e.total, share, e.can_sag, e.can_hog, e.beam, e.element
     )
     search = _Search(growing, ceiling, no_factor(ceiling.size))
-    now = known(found.utilisation.max(axis=0))
+    now = known(np.array([peaks.each for peaks in found.peaks]))
+    worst = now.max(axis=0)
     driven = np.any(share[_DRIVEN] != 0.0, axis=0)
-    rows = np.flatnonzero((driven | (now > 1.0)) & (ceiling > 0.0)[e.beam])
+    rows = np.flatnonzero((driven | (worst > 1.0)) & (ceiling > 0.0)[e.beam])
     some, least = growing.take(rows), search.least
     alone = some.utilisation(np.zeros(rows.size))
     mark(least, alone > 1.0, some.beam, some.element)
     least.factor[least.element >= 0] = 0.0
-    _solve_likely(search, some, alone.max(axis=0), known(found.utilisation[:, rows]))
-    _solve_the_rest(search, now)
+    _solve_likely(search, some, alone.max(axis=0), now.take(rows, axis=1, mode="clip"))
+    _solve_the_rest(search, worst)
     return least
 
 
@@ -222,7 +218,7 @@ def _solve_likely(search: _Search, some: _Growing, alone: Floats, now: Floats) -
     greatest = greatest_of_beams(rate, some.beam, beams)
     wanted = np.where((search.reach > 0.0) & (greatest > 0.0), _LIKELY * greatest, np.nan)
     rows = np.flatnonzero(rate >= wanted[some.beam])
-    few, now = some.take(rows), now[:, rows]
+    few, now = some.take(rows), now.take(rows, axis=1, mode="clip")
     excess = greatest_of_beams(worst[rows] - 1.0, few.beam, beams)
     over, within = (excess > 0.0) & (ceiling >= 1.0), (excess <= 0.0) & (ceiling > 1.0)
     mark(search.least, (now > 1.0) & over[few.beam], few.beam, few.element)
@@ -278,8 +274,11 @@ def _exceeding(growing: _Growing, reach: Floats, pending: Bools) -> tuple[Ints, 
 
 def _relieved(growing: _Growing) -> Bools:
     """Elements whose moment or shear the case first relieves."""
-    share = growing.share[_DRIVEN]
-    relieved: Bools = np.any((growing.total[_DRIVEN] - share) * share < 0.0, axis=0)
+    relieved = np.zeros(growing.beam.size, dtype=np.bool_)
+    for total, share in zip(growing.total[_DRIVEN], growing.share[_DRIVEN], strict=True):
+        rest = total - share
+        rest *= share
+        relieved |= rest < 0.0
     return relieved
 
 

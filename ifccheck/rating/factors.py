@@ -14,7 +14,8 @@ import numpy as np
 
 from ifccheck.mechanics.arrays import Demand, Floats, Ints
 from ifccheck.rating.crossing import Least, least_crossing, mark, no_factor
-from ifccheck.rating.elements import Elements, Found, demand_of
+from ifccheck.rating.elements import Elements, demand_of
+from ifccheck.rating.utilisation import Found, Peaks
 from ifccheck.standards import LimitState
 
 GREATEST_FACTOR = 1000.0
@@ -101,10 +102,10 @@ def _solve(found: Found, elements: Elements, share: Floats, ceiling: Floats) -> 
 
 def _unmoved(found: Found, elements: Elements, ceiling: Floats) -> Least:
     """Limit states that the loads do not change exceed at 0 or never."""
-    least, exceeds = no_factor(ceiling.size), ~(found.utilisation <= 1.0)
+    least, asked = no_factor(ceiling.size), (ceiling > 0.0)[elements.beam]
+    exceeds = np.array([peaks.missing | (peaks.utilisation > 1.0) for peaks in found.peaks])
     if exceeds.any():
-        exceeds &= (ceiling > 0.0)[elements.beam]
-        mark(least, exceeds, elements.beam, elements.element)
+        mark(least, exceeds[:, elements.station] & asked, elements.beam, elements.element)
         least.factor[least.element >= 0] = 0.0
     return least
 
@@ -117,12 +118,10 @@ def _straight(
     ceiling: Floats,
 ) -> Least:
     """Limit states whose demand is a straight line below a resistance that stays as it is."""
-    sags, hogs = elements.can_sag, elements.can_hog
-    acting = demanded(demand_of(elements.total, sags, hogs))
-    growth = demanded(demand_of(share, sags, hogs))
-    rates = np.empty(found.resistance.shape)
-    for out, demand, more, resistance in zip(rates, acting, growth, found.resistance, strict=True):
-        out[:] = _rate(demand, more, resistance)
+    growth = demanded(demand_of(share, elements.can_sag, elements.can_hog))
+    rates = np.array(
+        [_rate(peaks, elements, each) for peaks, each in zip(found.peaks, growth, strict=True)]
+    )
     greatest = np.maximum.reduceat(rates, elements.first_of_beam, axis=1).max(axis=0)
     least = no_factor(ceiling.size)
     np.divide(1.0, greatest, out=least.factor, where=greatest > 0.0)
@@ -133,11 +132,12 @@ def _straight(
     return least
 
 
-def _rate(demand: Floats, growth: Floats, resistance: Floats) -> Floats:
-    """1 over the factor at which demand reaches resistance, not above 0 where it never does; inf
-    where it is exceeded at 0. A resistance that is not known is none."""
-    left = np.nan_to_num(resistance, nan=0.0, posinf=np.inf)
-    left -= demand
+def _rate(peaks: Peaks, elements: Elements, growth: Floats) -> Floats:
+    """1 over the factor at which demand reaches resistance (E), not above 0 where it never does;
+    inf where it is exceeded at 0. A resistance that is not known is none."""
+    resistance = np.where(np.isnan(peaks.resistance), 0.0, peaks.resistance)
+    left = resistance.take(elements.station, mode="clip")
+    left -= peaks.demand
     left += growth
     exceeded = left < 0.0
     rate: Floats = growth / np.maximum(left, _LEAST_MARGIN)

@@ -16,8 +16,9 @@ from ifccheck.analysis.statics import case_effects
 from ifccheck.analysis.stations import StationTable, rows_before
 from ifccheck.mechanics.arrays import Bools, Floats, Ints
 from ifccheck.rating.assembly import Frame, make_station_arrays
-from ifccheck.rating.elements import distinct_elements, evaluate
+from ifccheck.rating.elements import distinct_elements
 from ifccheck.rating.factors import Factors, rating_factors
+from ifccheck.rating.utilisation import evaluate
 from ifccheck.standards import Options, Standard
 
 Values = TypeVar("Values", Floats, Ints)
@@ -66,7 +67,7 @@ def _turns(factor: Floats, moving: Bools, growth: Growth) -> tuple[Ints, Floats]
     moment[growth.case] *= factor[beam]
     shear[growth.case] *= factor[beam]
     grown = replace(cases, beam=beam, x=cases.x[rows], moment=moment, shear=shear, deflection=None)
-    return turning_places(replace(growth.effects, cases=grown), alone=False)
+    return turning_places(grown, growth.factors, alone=False)
 
 
 def _factors_at(
@@ -83,10 +84,11 @@ def _factors_at(
     cases = case_effects(
         frame.spans, frame.loads, stations, len(growth.effects.cases.moment), deflections=False
     )
-    acting = demands(combine(cases, growth.factors), np.arange(x.size), (growth.case,))
+    effects = combine(cases, growth.factors)
+    acting = demands(effects, np.arange(x.size), (growth.case,))
     arrays = make_station_arrays(beam, x, side, frame.runs, frame.zones, frame.faces)
     beams, row = np.unique(beam, return_inverse=True)
-    elements = distinct_elements(acting, row)
+    elements = distinct_elements(effects, acting, row)
     prepared = standard.prepare(frame.members, arrays, options)
     there = [
         evaluate(quick, quick.basis(prepared), elements)
