@@ -76,7 +76,9 @@ def rating_factors(
     beams = elements.first_of_beam.size
     moved = np.any(share[:2] != 0.0, axis=0)
     reached = np.logical_or.reduceat(moved, elements.first_of_beam)
-    most = np.where(reached, GREATEST_FACTOR if ceiling is None else ceiling, 0.0)
+    most = np.where(reached, GREATEST_FACTOR, 0.0)
+    if ceiling is not None:
+        most = np.minimum(most, ceiling)
     least = no_factor(beams)
     for one in sorted(found, key=lambda one: one.quick.demanded is None):
         lower = _solve(one, elements, share, np.minimum(least.factor, most))
@@ -86,6 +88,17 @@ def rating_factors(
         least.state[better] = rows[lower.state[better]]
     place = np.where(least.element >= 0, x[least.element % x.size], np.nan)
     return Factors(least.factor, least.state, least.element, place)
+
+
+def least_of(first: Factors, second: Factors) -> Factors:
+    """The lesser factor of each beam, the first where both are one."""
+    lesser = second.factor < first.factor
+    return Factors(
+        *(
+            np.where(lesser, getattr(second, name), getattr(first, name))
+            for name in Factors.__slots__
+        )
+    )
 
 
 def _solve(found: Found, elements: Elements, share: Floats, ceiling: Floats) -> Least:

@@ -110,6 +110,12 @@ class Quick:
     """Multiples of a case at which another rule begins to hold and utilisation may drop, given
     that basis, what acts and the part that the case has in it; nan or inf where there is none"""
 
+    @property
+    def steady(self) -> bool:
+        """No resistance depends on the loads; none of these limit states may depend on the
+        options"""
+        return not self.loaded or self.demanded is not None
+
 
 @dataclass(frozen=True, slots=True)
 class Note:
@@ -141,6 +147,8 @@ class Standard:
     """lambda for a concrete density [kg/m3]; None is normal density."""
     prepare: Callable[[Members, Stations, Options], Any]
     """Gives a Prepared."""
+    with_options: Callable[[Any, Options], Any]
+    """The same Prepared under other options."""
     critical_distance: Callable[[Members, Stations], Floats]
     """Distance of the critical section for shear from the face of a support, for stations at
     the faces [mm] (N)."""
