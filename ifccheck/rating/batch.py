@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterator, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import Any
 
 import numpy as np
@@ -16,7 +16,7 @@ from ifccheck.analysis.effects import (
 )
 from ifccheck.analysis.stations import StationTable
 from ifccheck.beam import SELF, Case, Combination
-from ifccheck.mechanics.arrays import Demand, Floats, Ints
+from ifccheck.mechanics.arrays import Bools, Demand, Floats, Ints
 from ifccheck.rating import verdict
 from ifccheck.rating.assembly import Frame, frame_of
 from ifccheck.rating.factors import Factors, least_of, rating_factors
@@ -172,11 +172,26 @@ def rate_options(
 
 def _found(standard: Standard, prepared: Any, under: Loaded, *, steady: bool) -> list[Found]:
     """The limit states that are steady, or not, at all elements."""
-    return [
+    found = [
         evaluate(quick, quick.basis(prepared), under.elements)
         for quick in standard.quick
         if quick.steady == steady
     ]
+    if not under.disturbed.any():
+        return found
+    return [replace(one, peaks=_outside(one.peaks, under.disturbed)) for one in found]
+
+
+def _outside(found: Sequence[Peaks], disturbed: Bools) -> tuple[Peaks, ...]:
+    """The same, with nothing asked of sections at some stations (N)."""
+    return tuple(
+        replace(
+            peaks,
+            utilisation=np.where(disturbed, 0.0, peaks.utilisation),
+            missing=peaks.missing & ~disturbed,
+        )
+        for peaks in found
+    )
 
 
 def _states(
