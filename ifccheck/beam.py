@@ -1,16 +1,16 @@
 """The domain: what is known of a beam, its reinforcement, supports and loads.
 
-Frozen dataclasses only: no IFC, no formulas. Inside the program lengths are mm, forces N,
-stresses MPa, moments N*mm and angles rad. Local axes of a beam: x along the axis from its
-start, z up in the vertical plane, y to the left. In a section, z is measured up from the
-soffit and y from the middle of the outline's width.
+Frozen dataclasses, and named tuples of what a model has many thousands of: no IFC, no
+formulas. Inside the program lengths are mm, forces N, stresses MPa, moments N*mm and angles rad.
+Local axes of a beam: x along the axis from its start, z up in the vertical plane, y to the left.
+In a section, z is measured up from the soffit and y from the middle of the outline's width.
 """
 
 from __future__ import annotations
 
 from dataclasses import dataclass
 from enum import StrEnum
-from typing import Literal
+from typing import Literal, NamedTuple
 
 from ifccheck.cases import SELF as SELF
 from ifccheck.cases import Case as Case
@@ -355,8 +355,7 @@ class Line:
     spans: tuple[Span, ...]
 
 
-@dataclass(frozen=True, slots=True)
-class Contact:
+class Contact(NamedTuple):
     """Where another member touches a beam: the stretch of x that it covers."""
 
     beam: str
@@ -378,8 +377,7 @@ class Contact:
     """Why it cannot be counted on to hold an end; empty where it can"""
 
 
-@dataclass(frozen=True, slots=True)
-class Load:
+class Load(NamedTuple):
     """One load on one beam, vertical and positive downward, in the beam's own x.
 
     line: intensity [N/mm] from ``values[0]`` at ``start`` to ``values[1]`` at ``end``;

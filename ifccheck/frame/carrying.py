@@ -7,8 +7,7 @@ itself carried. Beams that only lean on each other are carried by none.
 from __future__ import annotations
 
 from collections import defaultdict
-from collections.abc import Iterable, Mapping, Sequence
-from dataclasses import replace
+from collections.abc import Iterable, Mapping, Sequence, Set
 from typing import Literal, NamedTuple
 
 from ifccheck.beam import Beam, Contact, Model, OutOfScope, SupportKind
@@ -78,16 +77,21 @@ def carried_contacts(
         for key, own in judged.items()
     }
     carried = _carried(seats, stated)
-    return {
-        key: tuple(_with_doubt(contact, carrier, carried) for contact, carrier in judged[key])
-        for key in contacts
-    }
+    return {key: _with_doubts(judged[key], carried) for key in contacts}
 
 
-def _with_doubt(contact: Contact, carrier: str | None, carried: set[str]) -> Contact:
-    if contact.doubt or carrier is None or carrier in carried or not is_seat(contact):
-        return contact
-    return replace(contact, doubt=NOT_CARRIED)
+def _with_doubts(judged: Sequence[_Seat], carried: Set[str]) -> tuple[Contact, ...]:
+    return tuple(
+        [
+            contact._replace(doubt=NOT_CARRIED)
+            if carrier is not None
+            and carrier not in carried
+            and not contact.doubt
+            and is_seat(contact)
+            else contact
+            for contact, carrier in judged
+        ]
+    )
 
 
 def _keys(everything: Mapping[str, Sequence[Contact]], beams: Sequence[Beam]) -> dict[int, str]:
@@ -109,16 +113,24 @@ def _judged(
     """Every contact with the beam that would carry by it, and what speaks against it at once."""
     steps = {key: step for step, key in keys.items()}
     meeting = _ends_meeting(everything, steps)
-    judged: dict[str, list[_Seat]] = {}
-    for key, own in everything.items():
-        judged[key] = []
-        for contact in own:
-            reason = left_out.get(contact.other_step, "")
-            carrier = None if reason in STANDING_USES else keys.get(contact.other_step)
-            doubt = contact.doubt or _doubt(contact, steps[key], reason, meeting)
-            contact = contact if doubt == contact.doubt else replace(contact, doubt=doubt)
-            judged[key].append(_Seat(contact, carrier))
-    return judged
+    return {
+        key: [_judged_alone(contact, steps[key], keys, left_out, meeting) for contact in own]
+        for key, own in everything.items()
+    }
+
+
+def _judged_alone(
+    contact: Contact,
+    step: int,
+    keys: Mapping[int, str],
+    left_out: Mapping[int, str],
+    meeting: Set[tuple[int, int]],
+) -> _Seat:
+    reason = left_out.get(contact.other_step, "")
+    carrier = None if reason in STANDING_USES else keys.get(contact.other_step)
+    if not contact.doubt and (doubt := _doubt(contact, step, reason, meeting)):
+        contact = contact._replace(doubt=doubt)
+    return _Seat(contact, carrier)
 
 
 def _ends_meeting(
@@ -133,7 +145,7 @@ def _ends_meeting(
     }
 
 
-def _doubt(contact: Contact, step: int, reason: str, meeting: set[tuple[int, int]]) -> str:
+def _doubt(contact: Contact, step: int, reason: str, meeting: Set[tuple[int, int]]) -> str:
     if reason and reason not in (*STANDING_USES, *SPANNING_MATERIALS):
         return f"it is left out as {reason}"
     if contact.side == "end" and (contact.other_step, step) in meeting and is_seat(contact):

@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Sequence
 from dataclasses import dataclass
 from operator import attrgetter
-from typing import Literal
+from typing import Literal, NamedTuple
 
 from ifccheck.beam import Beam, Contact, Given, Line, Reason, Remark, Span, Support
 from ifccheck.frame.boxes import section_extent
@@ -39,8 +39,7 @@ class Standing:
         return self.line.spans[0]
 
 
-@dataclass(frozen=True, slots=True)
-class _Seating:
+class _Seating(NamedTuple):
     """How one end is seated."""
 
     centre: float
