@@ -46,8 +46,7 @@ class Anchor(StrEnum):
     """Stated or taken as fully anchored: the end is not modelled."""
 
 
-@dataclass(frozen=True, slots=True)
-class Remark:
+class Remark(NamedTuple):
     """Something that the reader of a rating must know of one beam, or of the run (beam None)."""
 
     beam: str | None
@@ -327,8 +326,7 @@ class Model:
     """Beams, columns and members that may rest on any beam of their storey"""
 
 
-@dataclass(frozen=True, slots=True)
-class Support:
+class Support(NamedTuple):
     """How one end of a beam stands."""
 
     kind: SupportKind
@@ -337,8 +335,7 @@ class Support:
     source: str
 
 
-@dataclass(frozen=True, slots=True)
-class Span:
+class Span(NamedTuple):
     """A span of a line between two supports; places along x of the line [mm]."""
 
     start: float
@@ -347,8 +344,7 @@ class Span:
     end_support: Support
 
 
-@dataclass(frozen=True, slots=True)
-class Line:
+class Line(NamedTuple):
     """Beams that act as one member, and its spans."""
 
     beams: tuple[str, ...]

@@ -34,7 +34,7 @@ _MEASURE_TYPES: Mapping[Measure, str] = {
 
 def rated_bytes(opened: OpenedModel, sets: Sequence[ResultSet]) -> bytes:
     """Return the model with result sets added; without any, its own bytes."""
-    distinct = dict.fromkeys(chain.from_iterable(result.properties for result in sets))
+    distinct = dict.fromkeys(chain.from_iterable([result.properties for result in sets]))
     _require_sound(opened, sets, distinct)
     worthless = {item for item in distinct if not _has_value(item)}
     measures = {item.measure for item in distinct if item not in worthless}
@@ -151,11 +151,14 @@ def _require_sound(
     for (guid, _, name), count in Counter(result.identity for result in sets).items():
         if count > 1:
             raise ValueError(f"{name} of {guid} is given twice")
+    sound: set[tuple[str, ...]] = set()
     for result in sets:
         if result.name not in RESULT_SET_NAMES:
             raise ValueError(f"{result.name} is not a result set")
-        if len(set(map(_name_of, result.properties))) < len(result.properties):
+        names = tuple(map(_name_of, result.properties))
+        if names not in sound and len(set(names)) < len(names):
             raise ValueError(f"{result.name} of {result.guid} gives a property twice")
+        sound.add(names)
     for item in distinct:
         _require_short(item)
     for step_id, guid in {result.step_id: result.guid for result in sets}.items():

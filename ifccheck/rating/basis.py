@@ -5,10 +5,11 @@ from __future__ import annotations
 import math
 from collections.abc import Sequence
 from functools import cache, lru_cache
+from operator import attrgetter
 
 import numpy as np
 
-from ifccheck.beam import Bars, Given, Outline, Stirrups, Support
+from ifccheck.beam import Bars, Given, Outline, Support
 from ifccheck.mechanics.arrays import Ints
 from ifccheck.rating.batch import Batch
 from ifccheck.rating.elements import first_greatest
@@ -124,24 +125,42 @@ def _height(outline: Outline) -> float:
 
 def _bars_text(bars: Sequence[Bars]) -> str:
     texts = [
-        f"{bar.count}-{bar.designation or show(bar.diameter, 'dimension')} at z = "
-        f"{show(bar.z, 'dimension')}, x = {show(bar.start, 'length')} to {show(bar.end, 'length')}"
-        for bar in sorted(bars, key=lambda bar: bar.z)
+        _layer_text(bar.count, bar.designation, bar.diameter, bar.z, bar.start, bar.end)
+        for bar in sorted(bars, key=_height_of)
     ]
     return "; ".join(texts) or "none"
+
+
+_height_of = attrgetter("z")
+
+
+@lru_cache(maxsize=8192)
+def _layer_text(
+    count: int, designation: str, diameter: float, z: float, start: float, end: float
+) -> str:
+    name = designation or show(diameter, "dimension")
+    stretch = f"x = {show(start, 'length')} to {show(end, 'length')}"
+    return f"{count}-{name} at z = {show(z, 'dimension')}, {stretch}"
 
 
 def _stirrups_text(subject: Subject) -> str:
     if not subject.stirrups_known:
         return "not stated"
-    return "; ".join(_zone_text(zone) for zone in subject.stirrups) or "none"
+    texts = [
+        _zone_text(z.legs, z.designation, z.diameter, z.spacing, z.start, z.end)
+        for z in subject.stirrups
+    ]
+    return "; ".join(texts) or "none"
 
 
-def _zone_text(zone: Stirrups) -> str:
-    legs = "legs not stated" if zone.legs is None else f"{zone.legs} legs"
-    name = zone.designation or show(zone.diameter, "dimension")
-    stretch = f"x = {show(zone.start, 'length')} to {show(zone.end, 'length')}"
-    return f"{legs} {name} @ {show(zone.spacing, 'dimension')}, {stretch}"
+@lru_cache(maxsize=8192)
+def _zone_text(
+    legs: int | None, designation: str, diameter: float, spacing: float, start: float, end: float
+) -> str:
+    known = "legs not stated" if legs is None else f"{legs} legs"
+    name = designation or show(diameter, "dimension")
+    stretch = f"x = {show(start, 'length')} to {show(end, 'length')}"
+    return f"{known} {name} @ {show(spacing, 'dimension')}, {stretch}"
 
 
 def _sections(batch: Batch, governing: Sequence[LimitStateRating | None]) -> list[list[BasisItem]]:
