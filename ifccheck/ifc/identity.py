@@ -30,40 +30,38 @@ Identity = tuple[str, int, str]
 
 def set_guid(beam_guid: str, ordinal: int, set_name: str) -> str:
     """Return the GlobalId of a beam's result set: the same in every run."""
-    return _derived([_set_name(beam_guid, ordinal, set_name)])[0]
+    return set_and_relation_guids([(beam_guid, ordinal, set_name)])[0][0]
 
 
 def relation_guid(beam_guid: str, ordinal: int, set_name: str) -> str:
     """Return the GlobalId of the relation that ties a result set to its beam."""
-    return _derived([_relation_name(beam_guid, ordinal, set_name)])[0]
+    return set_and_relation_guids([(beam_guid, ordinal, set_name)])[0][1]
 
 
 def set_and_relation_guids(identities: Sequence[Identity]) -> list[tuple[str, str]]:
-    """Return both GlobalIds of many sets at once."""
-    sets = _derived([_set_name(*identity) for identity in identities])
-    relations = _derived([_relation_name(*identity) for identity in identities])
-    return list(zip(sets, relations, strict=True))
+    """Return both GlobalIds of many sets at once.
+
+    They are UUIDs of version 5, that of the relation by the set's name with a word after it.
+    """
+    digests: list[bytes] = []
+    for beam_guid, ordinal, set_name in identities:
+        name = f"{beam_guid}\n{ordinal}\n{set_name}".encode()
+        hashed = hashlib.sha1(_NAMESPACE + name, usedforsecurity=False)
+        digests.append(hashed.digest())
+        hashed.update(b"\nrelation")
+        digests.append(hashed.digest())
+    guids = _spelled(digests)
+    return list(zip(guids[::2], guids[1::2], strict=True))
 
 
-def _set_name(beam_guid: str, ordinal: int, set_name: str) -> str:
-    return f"{beam_guid}\n{ordinal}\n{set_name}"
-
-
-def _relation_name(beam_guid: str, ordinal: int, set_name: str) -> str:
-    return f"{beam_guid}\n{ordinal}\n{set_name}\nrelation"
-
-
-def _derived(names: Sequence[str]) -> list[str]:
-    """Return each name's UUID of version 5 in the 22 digits of an IFC GlobalId.
+def _spelled(digests: Sequence[bytes]) -> list[str]:
+    """Return UUIDs of version 5 by their names' digests, in the 22 digits of an IFC GlobalId.
 
     Written out because ``uuid`` and ``ifcopenshell.guid`` together take many times as long, which
     is felt on thousands of beams.
     """
-    digests = [
-        hashlib.sha1(_NAMESPACE + name.encode(), usedforsecurity=False).digest() for name in names
-    ]
     # 16 zero bits before each make 24 digits of 6 bits, the first two of which are left out
-    bits = np.zeros((len(names), 18), np.uint8)
+    bits = np.zeros((len(digests), 18), np.uint8)
     bits[:, 2:] = np.frombuffer(b"".join(digests), np.uint8).reshape(-1, 20)[:, :16]
     bits[:, 8] = bits[:, 8] & 0x0F | 0x50
     bits[:, 10] = bits[:, 10] & 0x3F | 0x80

@@ -148,7 +148,7 @@ def _require_sound(
     opened: OpenedModel, sets: Sequence[ResultSet], distinct: Iterable[ResultProperty]
 ) -> None:
     """Refuse sets that would make the model unsound or could not be taken away again."""
-    for (guid, _, name), count in Counter(result.identity for result in sets).items():
+    for (guid, _, name), count in Counter([result.identity for result in sets]).items():
         if count > 1:
             raise ValueError(f"{name} of {guid} is given twice")
     sound: set[tuple[str, ...]] = set()

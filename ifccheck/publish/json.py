@@ -29,7 +29,7 @@ from __future__ import annotations
 
 import json
 import math
-from collections.abc import Iterable
+from collections.abc import Iterator
 from typing import Any
 
 from ifccheck.beam import Combination, OutOfScope, Remark
@@ -48,19 +48,21 @@ _text = json.JSONEncoder(allow_nan=False).encode
 
 def ratings_json(report: Report) -> str:
     """Return the whole answer as JSON; the same report gives the same text."""
-    members = {name: _lines(value) for name, value in _report(report).items()}
-    members["beams"] = _listed(beam_texts(report))
-    return "{\n" + ",\n".join(f"{_text(name)}: {text}" for name, text in members.items()) + "\n}\n"
+    pieces: list[str] = []
+    for name, value in _report(report).items():
+        pieces += (",\n" if pieces else "{\n", _text(name), ": ", *_lines(value))
+    return "".join([*pieces, "\n}\n"])
 
 
-def _lines(value: Any) -> str:
-    """A member of the whole: a list with one row a line, so that two runs can be compared."""
-    return _listed(map(_text, value)) if isinstance(value, list) else _text(value)
+def _lines(value: Any) -> tuple[str, ...]:
+    """A member of the whole: a list with one row a line, so that two runs can be compared.
 
-
-def _listed(rows: Iterable[str]) -> str:
-    lines = ",\n".join(rows)
-    return f"[\n{lines}\n]" if lines else "[]"
+    An iterator gives the rows as texts.
+    """
+    if not isinstance(value, list | Iterator):
+        return (_text(value),)
+    rows = ",\n".join(value if isinstance(value, Iterator) else map(_text, value))
+    return ("[\n", rows, "\n]") if rows else ("[]",)
 
 
 def _report(report: Report) -> Data:
@@ -91,7 +93,7 @@ def _report(report: Report) -> Data:
         },
         "rated_cases": [_case(case) for case in report.cases],
         "combinations": [_combination(combination) for combination in report.combinations],
-        "beams": [],  # these are written on their own
+        "beams": beam_texts(report),
         "out_of_scope": [_out_of_scope(member) for member in report.model.out_of_scope],
         "assumptions": [{"text": a.text, "beams": list(a.beams)} for a in report.assumptions],
         "remarks": [_remark(remark) for remark in report.remarks],
