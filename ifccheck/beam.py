@@ -1,16 +1,16 @@
 """The domain: what is known of a beam, its reinforcement, supports and loads.
 
-Frozen dataclasses only: no IFC, no formulas. Inside the program lengths are mm, forces N,
-stresses MPa, moments N*mm and angles rad. Local axes of a beam: x along the axis from its
-start, z up in the vertical plane, y to the left. In a section, z is measured up from the
-soffit and y from the middle of the outline's width.
+Frozen dataclasses, and named tuples of what a model has many thousands of: no IFC, no
+formulas. Inside the program lengths are mm, forces N, stresses MPa, moments N*mm and angles rad.
+Local axes of a beam: x along the axis from its start, z up in the vertical plane, y to the left.
+In a section, z is measured up from the soffit and y from the middle of the outline's width.
 """
 
 from __future__ import annotations
 
 from dataclasses import dataclass
 from enum import StrEnum
-from typing import Literal
+from typing import Literal, NamedTuple
 
 from ifccheck.cases import SELF as SELF
 from ifccheck.cases import Case as Case
@@ -46,8 +46,7 @@ class Anchor(StrEnum):
     """Stated or taken as fully anchored: the end is not modelled."""
 
 
-@dataclass(frozen=True, slots=True)
-class Remark:
+class Remark(NamedTuple):
     """Something that the reader of a rating must know of one beam, or of the run (beam None)."""
 
     beam: str | None
@@ -327,8 +326,7 @@ class Model:
     """Beams, columns and members that may rest on any beam of their storey"""
 
 
-@dataclass(frozen=True, slots=True)
-class Support:
+class Support(NamedTuple):
     """How one end of a beam stands."""
 
     kind: SupportKind
@@ -337,8 +335,7 @@ class Support:
     source: str
 
 
-@dataclass(frozen=True, slots=True)
-class Span:
+class Span(NamedTuple):
     """A span of a line between two supports; places along x of the line [mm]."""
 
     start: float
@@ -347,16 +344,14 @@ class Span:
     end_support: Support
 
 
-@dataclass(frozen=True, slots=True)
-class Line:
+class Line(NamedTuple):
     """Beams that act as one member, and its spans."""
 
     beams: tuple[str, ...]
     spans: tuple[Span, ...]
 
 
-@dataclass(frozen=True, slots=True)
-class Contact:
+class Contact(NamedTuple):
     """Where another member touches a beam: the stretch of x that it covers."""
 
     beam: str
@@ -378,8 +373,7 @@ class Contact:
     """Why it cannot be counted on to hold an end; empty where it can"""
 
 
-@dataclass(frozen=True, slots=True)
-class Load:
+class Load(NamedTuple):
     """One load on one beam, vertical and positive downward, in the beam's own x.
 
     line: intensity [N/mm] from ``values[0]`` at ``start`` to ``values[1]`` at ``end``;

@@ -6,7 +6,7 @@ import math
 from collections.abc import Callable, Mapping, Sequence, Set
 from dataclasses import dataclass, field
 from functools import lru_cache
-from typing import TypeVar
+from typing import NamedTuple, TypeVar
 
 from ifccheck.beam import (
     Bars,
@@ -222,8 +222,7 @@ def _stated(statement: BeamStatement) -> tuple[str, ...]:
 # Concrete ------------------------------------------------------------------------------------
 
 
-@dataclass(frozen=True, slots=True)
-class _Concrete:
+class _Concrete(NamedTuple):
     strength: Given
     density_factor: Given
     aggregate_size: Given
@@ -299,8 +298,7 @@ def _aggregate(stated: MaterialStatement, sources: _Sources, findings: _Findings
 # Reinforcement ---------------------------------------------------------------------------------
 
 
-@dataclass(frozen=True, slots=True)
-class _Steel:
+class _Steel(NamedTuple):
     bars: tuple[Bars, ...]
     stirrups: tuple[Stirrups, ...]
     stirrups_known: bool

@@ -113,7 +113,7 @@ def test_a_downward_load_points_down_above_and_below_the_beam() -> None:
 def test_a_moment_load_turns_as_it_acts(moment: float) -> None:
     """A positive moment turns anticlockwise with x to the right and z up (``beam.Load``)."""
     sheet = sheet_of("B-1000")
-    load = replace(sheet.loads[-1], kind="moment", values=(moment, 0.0), face="top")
+    load = sheet.loads[-1]._replace(kind="moment", values=(moment, 0.0), face="top")
     (drawn,) = of_class(elevation(replace(sheet, loads=(load,))), "moment")
     data = drawn.get("d") or ""
     (arc,) = re.findall(r"^M(\S+) (\S+)A11 11 0 1 ([01]) (\S+) (\S+)l", data)

@@ -67,7 +67,7 @@ def _renamed(beam: Subject, key: str) -> Subject:
     return replace(
         beam,
         beam=replace(beam.beam, key=key),
-        loads=tuple(replace(load, beam=key) for load in beam.loads),
+        loads=tuple(load._replace(beam=key) for load in beam.loads),
     )
 
 
@@ -112,7 +112,7 @@ def test_a_mirrored_beam_is_as_good(beam: Subject) -> None:
     turned = replace(
         beam,
         loads=tuple(
-            replace(load, start=length - load.end, end=length - load.start) for load in beam.loads
+            load._replace(start=length - load.end, end=length - load.start) for load in beam.loads
         ),
     )
     _, (one, other) = rated(_renamed(beam, "a"), _renamed(turned, "b"))

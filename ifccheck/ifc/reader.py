@@ -126,4 +126,4 @@ def _reinforced(
 
 def _by_key(source: Reinforcement, key: str) -> Reinforcement:
     """The same reinforcement with its remarks on the beam of a repeated GlobalId."""
-    return replace(source, remarks=tuple(replace(r, beam=key) for r in source.remarks))
+    return replace(source, remarks=tuple(r._replace(beam=key) for r in source.remarks))
