@@ -14,7 +14,8 @@ import numpy as np
 
 from ifccheck.ifc.bar_paths import Ints
 from ifccheck.ifc.equal_rows import first_of_each_text
-from ifccheck.ifc.lexer import Offsets, Scan
+from ifccheck.ifc.lexer import Scan
+from ifccheck.ifc.step_bytes import Offsets
 from ifccheck.ifc.step_cursors import BLANKS, IS_BLANK, Cursors
 
 _LETTERS = (string.ascii_letters + string.digits + "_").encode()

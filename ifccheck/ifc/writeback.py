@@ -15,10 +15,11 @@ import ifccheck
 from ifccheck.ifc.archive import pack
 from ifccheck.ifc.entity import GLOBAL_ID, text_at
 from ifccheck.ifc.identity import RESULT_SET_NAMES, set_and_relation_guids
-from ifccheck.ifc.lexer import LARGEST_ID, Offsets
+from ifccheck.ifc.lexer import LARGEST_ID
 from ifccheck.ifc.marks import with_block
 from ifccheck.ifc.opening import OpenedModel
 from ifccheck.ifc.result_units import UnitEntity, result_units
+from ifccheck.ifc.step_bytes import Offsets
 from ifccheck.ifc.step_text import step_logical, step_real, step_string
 from ifccheck.result_sets import Measure, ResultProperty, ResultSet
 
