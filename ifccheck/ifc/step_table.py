@@ -102,17 +102,12 @@ class StepTable:
         """What stands in statements behind their numbers; empty where there is none."""
         return [self._data[start:stop] for start, stop in self._bounds(ids)]
 
-    def text(self, step_id: int) -> bytes:
-        """What stands in one statement behind its number; empty where there is none."""
-        start, stop = self._bounds_of(step_id)
-        return self._data[start:stop]
-
-    def _bounds_of(self, step_id: int) -> tuple[int, int]:
+    def begins(self, step_id: int, text: bytes) -> bool:
+        """Whether a statement is known to begin with a text behind its number."""
         table = self._row_of
-        if table is None or not 0 <= step_id < len(table):
-            return next(self._bounds((step_id,)))
-        row = table.item(step_id)
-        return (self._after_numbers.item(row), self._stops.item(row)) if row >= 0 else (0, 0)
+        if table is None or not 0 <= step_id < len(table) or (row := table.item(step_id)) < 0:
+            return False
+        return self._data.startswith(text, self._after_numbers.item(row))
 
     def _bounds(self, ids: Sequence[int]) -> Iterator[tuple[int, int]]:
         rows = self.rows(np.array(ids, dtype=np.int64))
