@@ -3,7 +3,9 @@
 Frozen dataclasses, and named tuples of what a model has many thousands of: no IFC, no
 formulas. Inside the program lengths are mm, forces N, stresses MPa, moments N*mm and angles rad.
 Local axes of a beam: x along the axis from its start, z up in the vertical plane, y to the left.
-In a section, z is measured up from the soffit and y from the middle of the outline's width.
+In a section, z is measured up from the soffit and y from the middle of the outline's width;
+where the section varies, from the lowest soffit and the middle of the first section, so that all
+sections are in one frame.
 """
 
 from __future__ import annotations
@@ -75,8 +77,8 @@ class Given:
 
 @dataclass(frozen=True, slots=True)
 class Axis:
-    """The axis of a beam in the building: origin at the soffit's middle at the start [mm],
-    unit vectors, and the length [mm]."""
+    """The axis of a beam in the building: origin at the soffit's middle at the start [mm] (at the
+    height of the lowest soffit), unit vectors, and the length [mm]."""
 
     origin: Vector
     x: Vector
@@ -95,7 +97,8 @@ class Outline:
 
 @dataclass(frozen=True, slots=True)
 class Run:
-    """A stretch of a beam of one outline, or tapering linearly to ``outline_end``."""
+    """A stretch of a beam of one outline, or tapering linearly to ``outline_end``, each corner of
+    the outline to the like corner of that."""
 
     start: float
     end: float
