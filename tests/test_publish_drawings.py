@@ -455,7 +455,7 @@ def test_self_weight_in_several_parts_is_one_band() -> None:
     own = next(load for load in sheet.loads if load.case == SELF)
     half = sheet.beam.length / 2.0
     parts = (
-        replace(own, end=half, values=(3.0, 4.0)), replace(own, start=half, values=(4.0, 5.0)),
+        own._replace(end=half, values=(3.0, 4.0)), own._replace(start=half, values=(4.0, 5.0)),
     )  # fmt: skip
     others = tuple(load for load in sheet.loads if load.case != SELF)
     one, two = (elevation(replace(sheet, loads=(*some, *others))) for some in ((own,), parts))
