@@ -137,7 +137,8 @@ def _straight(
     )
     greatest = np.maximum.reduceat(rates, elements.first_of_beam, axis=1).max(axis=0)
     least = no_factor(ceiling.size)
-    np.divide(1.0, greatest, out=least.factor, where=greatest > 0.0)
+    with np.errstate(over="ignore"):  # a rate next to nothing limits nothing
+        np.divide(1.0, greatest, out=least.factor, where=greatest > 0.0)
     limited = least.factor < ceiling
     least.factor[~limited] = np.inf
     alike = np.where(limited, greatest * (1.0 - _ALIKE), np.nan)
