@@ -28,6 +28,9 @@ element of those is named"""
 _LEAST_MARGIN = 1e-9
 """What is left of a resistance, at least [N or N*mm]: a quotient by it is finite"""
 
+_LEAST_SHARE = 1e-30
+"""What a case must make of a demand to move it [N or N*mm]: no multiple of less reaches a margin"""
+
 
 @dataclass(frozen=True, slots=True)
 class Factors:
@@ -74,7 +77,7 @@ def rating_factors(
         Accurate to 1e-8 relative.
     """
     beams = elements.first_of_beam.size
-    moved = np.any(share[:2] != 0.0, axis=0)
+    moved = np.any(np.abs(share[:2]) > _LEAST_SHARE, axis=0)
     reached = np.logical_or.reduceat(moved, elements.first_of_beam)
     most = np.where(reached, GREATEST_FACTOR, 0.0)
     if ceiling is not None:

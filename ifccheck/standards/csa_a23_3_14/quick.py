@@ -35,7 +35,7 @@ def _turns(faces: Faces[Web], total: Demand, share: Demand) -> tuple[Floats, ...
     """Where |Mf| = Vf dv, beyond which one face in tension is looked at instead of both."""
     beside = total.moment - share.moment, total.critical_shear - share.critical_shear
     depths = faces.soffit.shear_depth, faces.top_depth
-    with np.errstate(divide="ignore", invalid="ignore"):
+    with np.errstate(divide="ignore", invalid="ignore", over="ignore"):
         return tuple(
             (depth * beside[1] - beside[0]) / (share.moment - depth * share.critical_shear)
             for each in depths
