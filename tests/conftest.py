@@ -11,9 +11,15 @@ from pathlib import Path
 from typing import Any
 
 import pytest
+from hypothesis import settings
 
 REPOSITORY = Path(__file__).resolve().parents[1]
 SHARED = REPOSITORY.parent / "shared"
+
+settings.register_profile("the same examples every time", derandomize=True)
+if os.environ.get("IFCCHECK_NOTHING_SKIPS"):
+    # What is merged is judged by what it changed; new examples are looked for everywhere else.
+    settings.load_profile("the same examples every time")
 
 
 @pytest.hookimpl(wrapper=True)
