@@ -23,6 +23,7 @@ from ifccheck.beam import (
     Load,
     Nature,
     Outline,
+    Run,
     Span,
     Stirrups,
 )
@@ -264,7 +265,7 @@ def sheet_maker(
             loads=(*_self_weight(arisen, subject, row), *subject.loads),
             bars=subject.bars,
             stirrups=subject.stirrups,
-            section=_outline_at(subject.beam, section_x),
+            section=_outline_at(subject.runs, section_x),
             section_x=section_x,
             checks=checks,
             diagrams=_diagrams(batch, row, rating),
@@ -352,9 +353,9 @@ def _section_x(batch: Batch, row: int, rating: Rating) -> float:
     return place if math.isfinite(place) else (span.start + span.end) / 2.0
 
 
-def _outline_at(beam: Beam, x: float) -> Outline:
-    held = [run for run in beam.runs if run.start <= x]
-    return (held[-1] if held else beam.runs[0]).outline
+def _outline_at(runs: Sequence[Run], x: float) -> Outline:
+    held = [run for run in runs if run.start <= x]
+    return (held[-1] if held else runs[0]).outline
 
 
 def _diagrams(batch: Batch, row: int, rating: Rating) -> tuple[Diagram, ...]:

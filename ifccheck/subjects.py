@@ -37,6 +37,7 @@ from ifccheck.brief.statements import (
 from ifccheck.brief.supports import resolve_supports, stated_ends
 from ifccheck.detailing import Layout, choose_source, lay_out
 from ifccheck.frame.carrying import contacts_of, pressed_ends
+from ifccheck.frame.openings import Net, net_of
 from ifccheck.frame.reactions import loaded_from_side, unknown_reactions
 from ifccheck.frame.spans import Standing, stand_alone
 from ifccheck.rating.subject import Subject, Unrated
@@ -75,6 +76,11 @@ class _Findings:
     def refuse(self, text: str, *, blocking: bool = True) -> None:
         """Note why the beam cannot be rated."""
         self.reasons.append(Reason(text, blocking))
+
+    def take(self, net: Net) -> None:
+        """Note what openings bring."""
+        self.reasons += net.reasons
+        self.remarks += net.remarks
 
     def assume(self, label: str, given: Given) -> Given:
         """Note an assumed value."""
@@ -174,6 +180,8 @@ def _one(
         findings.remarks += standing.remarks
     steel = _steel(beam, sources, findings) if beam.runs else None
     _judge_loads(beam, sources, statement, standing, loads, findings)
+    net = net_of(beam, standing, loads, steel) if standing and steel else Net()
+    findings.take(net)
     if standing is None or steel is None or any(reason.blocking for reason in findings.reasons):
         return Unrated(beam, _distinct(findings.reasons), tuple(findings.remarks))
     return Subject(
@@ -198,6 +206,7 @@ def _one(
         stirrup_yield=steel.stirrup_yield,
         reasons=_distinct(findings.reasons),
         remarks=tuple(findings.remarks),
+        body=net.body,
     )
 
 

@@ -140,9 +140,7 @@ def rate_frame(
     """Rate beams of which the tables are made already: numbers alone."""
     critical = _critical_sections(subjects, frame, standard)
     effects, stations = _effects(frame, critical, cases, combinations)
-    arrays = make_station_arrays(
-        stations.beam, stations.x, stations.side, frame.runs, frame.zones, frame.faces
-    )
+    arrays = make_station_arrays(stations.beam, stations.x, stations.side, frame)
     prepared = standard.prepare(frame.members, arrays, options)
     rated = tuple(row for row, case in enumerate(cases) if case.rated)
     acting = demands(
@@ -229,21 +227,20 @@ def _critical_sections(subjects: Sequence[Subject], frame: Frame, standard: Stan
     """x of the critical section for shear at either end of each beam [mm] (B, 2).
 
     nan where nearer stations must be checked with their own shear: a free end, an end whose
-    reaction does not compress it, or a concentrated load between the face and that section.
+    reaction does not compress it, or a concentrated load or an opening between the face and that
+    section.
     """
     beams = len(subjects)
     beam = np.repeat(np.arange(beams), 2)
     side = np.tile([1, -1], beams)
-    at_faces = make_station_arrays(
-        beam, frame.faces.ravel(), side, frame.runs, frame.zones, frame.faces
-    )
+    at_faces = make_station_arrays(beam, frame.faces.ravel(), side, frame)
     distance = standard.critical_distance(frame.members, at_faces).reshape(beams, 2)
     critical = frame.faces + distance * np.array([1.0, -1.0])
     direct = np.array([subject.direct for subject in subjects])
     held = np.stack([frame.spans.start_kind, frame.spans.end_kind], axis=-1) != FREE
     middle = frame.faces.mean(axis=1, keepdims=True)
     short = (critical - middle) * np.array([1.0, -1.0]) > 0.0
-    usable = direct & held & ~short & ~_concentrated(frame, critical)
+    usable = direct & held & ~short & ~_concentrated(frame, critical) & ~_opened(frame, critical)
     return np.where(usable, critical, np.nan)
 
 
@@ -263,6 +260,15 @@ def _concentrated(frame: Frame, critical: Floats) -> Bools:
     ):
         lump = (loads.kind != LINE) | (loads.end - loads.start < short[loads.beam, end])
         found[loads.beam[near & lump], end] = True
+    return found
+
+
+def _opened(frame: Frame, critical: Floats) -> Bools:
+    """Whether an opening takes depth between the face and the section (B, 2)."""
+    found = np.zeros(critical.shape, dtype=np.bool_)
+    losses = frame.losses
+    found[losses.beam[losses.start <= critical[losses.beam, 0]], 0] = True
+    found[losses.beam[losses.end >= critical[losses.beam, 1]], 1] = True
     return found
 
 
@@ -287,7 +293,7 @@ def _effects(
 def _fixed_places(frame: Frame, critical: Floats) -> list[Places]:
     """Everything but loads at which something changes along the beams."""
     beams = np.arange(critical.shape[0])
-    m, runs, zones = frame.members, frame.runs, frame.zones
+    m, runs, zones, losses = frame.members, frame.runs, frame.zones, frame.losses
     row, layer = np.nonzero(m.layer_area > 0.0)
     edges = [
         (np.repeat(beams, 2), frame.faces.ravel(), True),
@@ -299,6 +305,8 @@ def _fixed_places(frame: Frame, critical: Floats) -> list[Places]:
         (row, m.layer_end[row, layer], True),
         (zones.beam, zones.start, True),
         (zones.beam, zones.end, True),
+        (losses.beam, losses.start, True),
+        (losses.beam, losses.end, True),
     ]
     return [
         places(beam[finite], x[finite], two_sided=both)

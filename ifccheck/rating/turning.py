@@ -84,7 +84,7 @@ def _factors_at(
         frame.spans, frame.loads, stations, len(growth.effects.cases.moment), deflections=False
     )
     acting = demands(combine(cases, growth.factors), np.arange(x.size), (growth.case,))
-    arrays = make_station_arrays(beam, x, side, frame.runs, frame.zones, frame.faces)
+    arrays = make_station_arrays(beam, x, side, frame)
     beams, row = np.unique(beam, return_inverse=True)
     elements = distinct_elements(acting, row)
     prepared = standard.prepare(frame.members, arrays, options)

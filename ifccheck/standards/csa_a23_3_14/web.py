@@ -37,6 +37,8 @@ class Web:
     inside: Bools
     simplified: Bools
     shear_depth: Floats
+    shear_loss: Floats
+    """What openings have taken off it [mm]; nan where shear cannot be rated"""
     tension_area: Floats
     has_steel: Bools
     """The face holds tension steel, developed or not"""
@@ -72,6 +74,11 @@ class Web:
     beyond_materials: Bools
     """Outside that of clause 8"""
 
+    @property
+    def whole_depth(self) -> Floats:
+        """dv of the web without openings: cracks are spaced by it [mm] (N)"""
+        return self.shear_depth + self.shear_loss
+
     def take(self, rows: Ints | slice) -> Web:
         """The same at the given stations; rows may repeat."""
         arrays = (getattr(self, f.name)[rows] for f in fields(self)[1:])
@@ -94,6 +101,7 @@ def web(prepared: Prepared, *, top: bool) -> Web:
         inside=prepared.inside,
         simplified=around.simplified,
         shear_depth=face.shear_depth,
+        shear_loss=prepared.shear_loss,
         tension_area=face.tension_area,
         has_steel=face.tension_area_full > 0.0,
         critical_area=area,
@@ -136,7 +144,7 @@ def _cracks(prepared: Prepared, face: FaceState) -> dict[str, Any]:
         concrete_strength=prepared.concrete_strength, aggregate_size=prepared.aggregate_size
     )
     spacing = formulas.equivalent_crack_spacing(
-        shear_depth=face.shear_depth, aggregate_size=aggregate
+        shear_depth=face.shear_depth + prepared.shear_loss, aggregate_size=aggregate
     )
     return {"aggregate_size": aggregate, "crack_spacing": spacing}
 
