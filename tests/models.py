@@ -92,6 +92,16 @@ class MadeBeam:
     direction: float = 0.0
     """Of the beam in plan [deg]"""
     class_name: str = "IfcBeam"
+    openings: tuple[Hole, ...] = ()
+
+
+@dataclass(frozen=True)
+class Hole:
+    """An opening: a box in the beam's axes."""
+
+    x: tuple[float, float]
+    y: tuple[float, float]
+    z: tuple[float, float]
 
 
 @dataclass(frozen=True)
@@ -275,6 +285,8 @@ class Model:
             beam.class_name, beam.mark, placed, self._shape(solid, "SweptSolid")
         )
         element.Tag = f"tag of {beam.mark}"
+        for number, hole in enumerate(beam.openings):
+            self._opening(beam, hole, element, inner, f"hole {number} of {beam.mark}")
         self._notation(beam, element)
         made = [bar for layer in beam.layers for bar in self._layer(beam, layer, element, inner)]
         made += [bar for ties in beam.ties for bar in self._ties(beam, ties, element, inner)]
@@ -282,6 +294,22 @@ class Model:
             self.aggregate(f"bars of {beam.mark}", element, made)
             self.bars += made
         self._columns(beam, frame)
+
+    def _opening(self, beam: MadeBeam, hole: Hole, host: Any, inner: Frame, name: str) -> None:
+        (y0, y1), (z0, z1) = (tuple(map(self._y, hole.y)), hole.z)
+        ring = ((y0, z0), (y1, z0), (y1, z1), (y0, z1))
+        start = min(self._x(beam, x) for x in hole.x)
+        frame = Frame(inner.point((start, 0.0, 0.0)), inner.angle)
+        solid = self._extrusion(ring, frame, False, hole.x[1] - hole.x[0])
+        placement = self.make("IfcLocalPlacement", host.ObjectPlacement, self._axes(Frame()))
+        opening = self.rooted(
+            "IfcOpeningElement", name, Name=name, ObjectPlacement=placement,
+            Representation=self._shape(solid, "SweptSolid"),
+        )  # fmt: skip
+        self.rooted(
+            "IfcRelVoidsElement", name, RelatingBuildingElement=host,
+            RelatedOpeningElement=opening,
+        )  # fmt: skip
 
     def _y(self, y: float) -> float:
         return -y if self.setting.mirrored != self.setting.from_end else y

@@ -14,7 +14,17 @@ import numpy as np
 from ifccheck.beam import Axis, Opening, Run
 from ifccheck.ifc.bodies import BOOLEANS, Placed, body_items, extrusion
 from ifccheck.ifc.clips import Cloud
-from ifccheck.ifc.entity import ILL_TYPED, NAME, Entity, UnreadableError, get, label, need, text_at
+from ifccheck.ifc.entity import (
+    ILL_TYPED,
+    NAME,
+    Entity,
+    UnreadableError,
+    get,
+    label,
+    need,
+    several,
+    text_at,
+)
 from ifccheck.ifc.placements import Matrix
 from ifccheck.ifc.points import points_of
 from ifccheck.ifc.profile_curves import SAGITTA
@@ -179,10 +189,20 @@ def _seen(kind: str, along: Cloud) -> OpeningShape:
 def _grown(extent: _Extent, item: Entity) -> _Extent:
     """The extent with what tracing its curves may have cut short."""
     if item.is_a() == "IfcExtrudedAreaSolid":
-        short = 0.0 if get(item, "SweptArea").is_a() in EXACT else SAGITTA
+        short = 0.0 if _straight_edged(need(item, "SweptArea")) else SAGITTA
     else:
         short = DEFLECTION
     return extent._replace(low=extent.low - short, high=extent.high + short)
+
+
+def _straight_edged(area: Entity) -> bool:
+    """Whether the extent of a profile is known to the last digit."""
+    curve = get(area, "OuterCurve")
+    if curve is None:
+        return area.is_a() in EXACT
+    if curve.is_a() == "IfcIndexedPolyCurve":
+        return not any(segment.is_a("IfcArcIndex") for segment in several(curve, "Segments"))
+    return bool(curve.is_a() == "IfcPolyline")
 
 
 def _cut(extent: _Extent, axis: Axis, runs: Sequence[Run], origin: str) -> Opening | None:

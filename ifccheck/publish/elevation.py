@@ -7,6 +7,7 @@ from dataclasses import dataclass
 from functools import cached_property
 
 from ifccheck.beam import SELF, Anchor, Bars, Load, Ring, Run, Span, Stirrups, Support
+from ifccheck.publish.openings import drawn_opening
 from ifccheck.publish.quantities import typographic
 from ifccheck.publish.svg import (
     circle,
@@ -88,6 +89,7 @@ def elevation(sheet: Sheet) -> str:
         below.drawn(frame),
         _body(runs, frame),
         *(_stirrup_set(stirrups, frame, foot) for stirrups in sheet.stirrups),
+        *(drawn_opening(opening, sheet.beam, frame) for opening in sheet.beam.openings),
         *(_bar_layer(i, bars, frame) for i, bars in enumerate(sheet.bars)),
         _supports(sheet.span, frame),
         _span_line(sheet.span, length, frame, foot + 58.0),
