@@ -386,6 +386,12 @@ def test_unknown_legs_and_recesses_do_not_go_together() -> None:
     assert "where the legs of the stirrups run is not known" in texts(with_openings(made, recess))
     none = replace(made, stirrups=(), stirrup_yield=())
     assert not with_openings(none, recess).reasons
+    ell = Outline((
+        ((-350, 0), (-50, 0), (-50, 450), (350, 450), (350, 600), (-350, 600)),
+    ))  # fmt: skip
+    beside = hole(2500, 100, 200, 200, -350, -340)
+    two = subject(bottom=0, top=0, loads=(line("floor", 2.0),))
+    assert "is not known" in texts(with_openings(two, beside, outline=ell))
 
 
 def test_an_opening_between_face_and_critical_section_takes_the_lesser_shear_away() -> None:

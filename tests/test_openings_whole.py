@@ -43,11 +43,11 @@ VARIOUS = replace(
     origin=(2000.0, 20000.0, 0.0),
     openings=(
         WEB,
-        Hole((3200.0, 3300.0), (-200.0, -125.0), (200.0, 400.0)),
+        Hole((3200.0, 3300.0), (-200.0, 800.0), (560.0, 700.0)),
         Hole((4300.0, 4900.0), (300.0, 400.0), (400.0, 700.0)),
     ),
 )
-"""Through the web, into its right side, and down through the flange"""
+"""Through the web, across the top, and down through the flange"""
 LOADS = (BEARINGS, load("floor", 'line = "4 kN/m"'), load("press", 'line = "6 kN/m"'))
 
 
@@ -84,7 +84,9 @@ def test_how_a_model_is_written_changes_nothing(
     answer = answers(run_of(tmp_path, VARIOUS, setting))["O-1"]
     found, expected = numbers(answer, mirrored=swapped), numbers(plain)
     assert found.keys() == expected.keys()
-    for name, value in expected.items():
+    # longitudinal tension is limited, and so worst at several places at once
+    told = [name for name in expected if not (swapped and name.startswith("basis"))]
+    for name, value in ((name, expected[name]) for name in told):
         if isinstance(value, float) and not name.endswith("position"):
             assert found[name] == pytest.approx(value, rel=1e-6), name
         elif not name.endswith("position"):
@@ -150,8 +152,8 @@ def test_the_sheet_shows_the_openings_and_prints_the_rule(tmp_path: Path) -> Non
     (report,) = run.reports
     sheet = report.sheet(next(iter(report.ratings)))
     drawing = elevation(sheet)
-    assert drawing.count('class="void"') == 1
-    assert drawing.count('class="void hidden"') == 2
+    assert drawing.count('class="void"') == 2
+    assert drawing.count('class="void hidden"') == 1
     texts = [remark.text for remark in sheet.rating.remarks]
     assert RULE in texts
     assert sum("opening at x = " in text for text in texts) == 3

@@ -38,6 +38,9 @@ DISTURBED = 1.0
 """Depths from the face of a support within which sections are disturbed already"""
 BESIDE = 0.5
 """Depths on either side of an opening over which a crack may run into it"""
+OFF_MIDDLE = 1.0
+"""How far from the middle of the outline the web may stand for its stirrups to be known by half
+their width [mm]"""
 APART = 1.0
 """Depths between two openings from which on each stands alone"""
 
@@ -210,11 +213,11 @@ def _cut_leg(one: Measured, stirrups: Sequence[Stirrups]) -> str:
     for zone in stirrups:
         if zone.end <= opening.start or zone.start >= opening.end:
             continue
-        if zone.half_width is None or zone.legs is None or zone.legs > 2:
+        if zone.half_width is None or zone.legs != 2 or abs(one.middle) > OFF_MIDDLE:
             return "where the legs of the stirrups run is not known"
         outer, inner = zone.half_width, zone.half_width - zone.diameter
         for near, far in ((inner, outer), (-outer, -inner)):
-            if opening.right < one.middle + far and one.middle + near < opening.left:
+            if opening.right < far and near < opening.left:
                 return "a leg of the stirrups would run through it"
     return ""
 
