@@ -19,6 +19,8 @@ from ifccheck.cases import CombinationKind as CombinationKind
 from ifccheck.cases import Nature as Nature
 from ifccheck.openings import Opening as Opening
 from ifccheck.openings import ShearLoss as ShearLoss
+from ifccheck.slabs import Flange as Flange
+from ifccheck.slabs import Slab as Slab
 from ifccheck.standing import Contact as Contact
 from ifccheck.standing import Line as Line
 from ifccheck.standing import Span as Span
@@ -117,12 +119,15 @@ class Run:
 
 @dataclass(frozen=True, slots=True)
 class RatedBody:
-    """What of a beam's body is rated, where that is not the whole of it and nothing else."""
+    """What is rated of a beam, where that is not its body and nothing else."""
 
     runs: tuple[Run, ...]
+    """With slab that counts as a flange, without openings"""
     losses: tuple[ShearLoss, ...]
-    light: bool
-    """Self weight is that of these runs, not of the body"""
+    weighed: tuple[Run, ...]
+    """What self weight is that of"""
+    flanges: tuple[Flange, ...] = ()
+    """Slab that counts"""
 
 
 @dataclass(frozen=True, slots=True)
@@ -262,6 +267,8 @@ class Beam:
     greatest_density: Given | None = None
     """The greatest density that the model states for its concrete, for its weight [kg/m3]"""
     openings: tuple[Opening, ...] = ()
+    precast: str = ""
+    """What tells that it is precast; empty where nothing does"""
 
     @property
     def mark(self) -> str:
@@ -347,6 +354,8 @@ class Model:
     storeys: tuple[Storey, ...]
     remarks: tuple[Remark, ...] = ()
     unmeasured: tuple[Unmeasured, ...] = ()
+    slabs: tuple[Slab, ...] = ()
+    """Level slabs, which beams may be cast with"""
     """Beams, columns and members that may rest on any beam of their storey"""
 
 

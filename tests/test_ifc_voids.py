@@ -43,7 +43,7 @@ def box_of(opening: Opening) -> tuple[float, ...]:
 
 def net_volume(beam: Beam) -> float:
     """Of what the boxes of its openings leave of a beam, by the width profile [mm3]."""
-    runs, gone = net_runs(beam)
+    runs, gone = net_runs(beam.runs, beam.openings)
     assert not gone
     volume = 0.0
     for run in runs:

@@ -78,7 +78,7 @@ def test_the_net_outline_is_what_shapely_leaves_less_flange_beyond(boxes) -> Non
     beam = replace(
         subject().beam, runs=(Run(0.0, LENGTH, TEE),), openings=tuple(openings)
     )  # fmt: skip
-    runs, gone = net_runs(beam)
+    runs, gone = net_runs(beam.runs, beam.openings)
     left = figure_of(TEE).difference(
         unary_union([box(o.right, o.bottom, o.left, o.top) for o in openings])
     )

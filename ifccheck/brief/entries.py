@@ -6,7 +6,13 @@ from typing import TypedDict
 
 from ifccheck.brief import schema
 from ifccheck.brief.faults import FaultError
-from ifccheck.brief.model import BeamEntry, MaterialEntry, Selection, SupportEntry
+from ifccheck.brief.model import (
+    BeamEntry,
+    MaterialEntry,
+    Selection,
+    SlabFlange,
+    SupportEntry,
+)
 from ifccheck.brief.places import Path, shown
 from ifccheck.brief.supports import cannot_stand
 
@@ -64,7 +70,7 @@ def support_entry(index: int, table: schema.SupportTable) -> SupportEntry:
 def beam_entry(index: int, table: schema.BeamTable) -> BeamEntry:
     """An entry of ``[[beams]]``."""
     path: Path = ("beams", index)
-    keys = ("span", "unloaded", "loads_complete", "torsion")
+    keys = ("span", "unloaded", "loads_complete", "torsion", "slab_flange")
     _states_something(path, table, keys)
     return BeamEntry(
         **head(path, table),
@@ -72,7 +78,16 @@ def beam_entry(index: int, table: schema.BeamTable) -> BeamEntry:
         unloaded=table.unloaded,
         loads_complete=table.loads_complete,
         torsion=table.torsion,
+        slab_flange=_slab_flange(table.slab_flange),
     )
+
+
+def _slab_flange(stated: bool | str | None) -> SlabFlange | None:
+    if stated is None:
+        return None
+    if stated == "on top":
+        return "on top"
+    return "level" if stated else "none"
 
 
 def material_entry(index: int, table: schema.MaterialTable) -> MaterialEntry:

@@ -23,6 +23,11 @@ ReinforcementField = Literal[
 ]
 
 
+SlabFlange = Literal["none", "level", "on top"]
+"""Whether slab that is modelled apart counts as a flange: none; what is level with the beam; also
+what lies on its top."""
+
+
 @dataclass(frozen=True, slots=True)
 class Selection:
     """Which beams an entry speaks of: marks, or an element query; exactly one is given."""
@@ -100,6 +105,7 @@ class BeamEntry:
     loads_complete: bool | None
     torsion: bool | None
     """True where loads act beside the web or the beam must twist to stand."""
+    slab_flange: SlabFlange | None
 
 
 @dataclass(frozen=True, slots=True)
@@ -153,6 +159,8 @@ class Defaults:
     cover: float | None = None
     aggregate_size: float | None = None
     supports: tuple[SupportKind, SupportKind] | None = None
+    slab_flanges: bool = False
+    """Slabs that beams are cast with count as their flanges."""
 
 
 @dataclass(frozen=True, slots=True)

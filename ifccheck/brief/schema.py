@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Callable
-from typing import Annotated, Any
+from typing import Annotated, Any, Literal
 
 from pydantic import (
     BaseModel,
@@ -110,6 +110,7 @@ class DefaultsTable(MaterialsTable):
     """``[defaults]``"""
 
     supports: list[SupportKind] | None = Field(default=None, min_length=2, max_length=2)
+    slab_flanges: bool = False
 
 
 class PropertiesTable(Table):
@@ -189,6 +190,7 @@ class BeamTable(SelectingTable):
     unloaded: bool | None = None
     loads_complete: bool | None = None
     torsion: bool | None = None
+    slab_flange: bool | Literal["on top"] | None = None
 
 
 class MaterialTable(MaterialsTable, SelectingTable):

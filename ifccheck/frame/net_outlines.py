@@ -1,4 +1,4 @@
-"""What openings leave of the outlines of a beam.
+"""What openings leave of the outlines of a beam, and what slabs add to them.
 
 An opening counts as the box round it, and flange that lies beyond a box is taken as gone too: it
 can take no compression over from the web there.
@@ -10,7 +10,7 @@ from collections.abc import Iterator, Sequence
 from itertools import pairwise
 from typing import TYPE_CHECKING
 
-from ifccheck.beam import Beam, Opening, Reason, Run
+from ifccheck.beam import Flange, Opening, Outline, Reason, Run
 from ifccheck.frame.figures import Stretch, figure_of, narrowest, outline_of, parts_of
 from ifccheck.units import show
 
@@ -28,13 +28,15 @@ def place_of(opening: Opening) -> str:
     return f"opening at x = {show(opening.start, 'length')} to {show(opening.end, 'length')}"
 
 
-def net_runs(beam: Beam) -> tuple[tuple[Run, ...], list[Reason]]:
+def net_runs(
+    runs_of_beam: Sequence[Run], openings: Sequence[Opening]
+) -> tuple[tuple[Run, ...], list[Reason]]:
     """The runs cut where openings begin and end, each with what is left of its outline."""
     runs: list[Run] = []
     gone: list[Reason] = []
-    for run in beam.runs:
-        for start, end in _pieces(run, beam.openings):
-            here = [one for one in beam.openings if one.start < end and one.end > start]
+    for run in runs_of_beam:
+        for start, end in _pieces(run, openings):
+            here = [one for one in openings if one.start < end and one.end > start]
             whole = figure_of(run.outline)
             figure = without(whole, here)
             if figure is whole:
@@ -47,11 +49,34 @@ def net_runs(beam: Beam) -> tuple[tuple[Run, ...], list[Reason]]:
     return tuple(runs), gone
 
 
-def _pieces(run: Run, openings: Sequence[Opening]) -> Iterator[Stretch]:
+def _pieces(run: Run, stretches: Sequence[Opening | Flange]) -> Iterator[Stretch]:
     edges = {run.start, run.end}
-    edges |= {x for one in openings for x in (one.start, one.end) if run.start < x < run.end}
-    places = sorted(edges)
-    yield from pairwise(places)
+    edges |= {x for one in stretches for x in (one.start, one.end) if run.start < x < run.end}
+    yield from pairwise(sorted(edges))
+
+
+def with_flanges(runs: Sequence[Run], flanges: Sequence[Flange]) -> tuple[Run, ...]:
+    """The runs cut where flanges begin and end, each with the slab that counts there."""
+    return tuple(
+        piece
+        for run in runs
+        for piece in ((run,) if run.outline_end is not None else _flanged(run, flanges))
+    )
+
+
+def _flanged(run: Run, flanges: Sequence[Flange]) -> Iterator[Run]:
+    for start, end in _pieces(run, flanges):
+        here = [one for one in flanges if one.start < end and one.end > start]
+        yield Run(start, end, _with_slab(run.outline, here) if here else run.outline)
+
+
+def _with_slab(outline: Outline, flanges: Sequence[Flange]) -> Outline:
+    from shapely import box
+
+    figure = figure_of(outline)
+    for one in flanges:
+        figure = figure.union(box(one.right, one.bottom, one.left, one.top))
+    return outline_of(figure, outline.name)
 
 
 def without(whole: BaseGeometry, openings: Sequence[Opening]) -> BaseGeometry:

@@ -17,22 +17,24 @@ from ifccheck.beam import (
     Run,
     Stirrups,
 )
-from ifccheck.frame.net_outlines import NOTHING, net_runs, place_of
+from ifccheck.frame.net_outlines import NOTHING, net_runs, place_of, with_flanges
 from ifccheck.frame.opening_shear import RULE, Surroundings, judged_openings, losses_of, told
+from ifccheck.frame.slab_flanges import Counted
 from ifccheck.frame.spans import Standing
 from ifccheck.units import show
 
 STAGE = "openings"
+NO_SLAB = Counted()
 GROSS_WEIGHT = "self weight is that of the beam without its openings"
 NET_WEIGHT = "self weight may relieve: it is that of the beam less the boxes round its openings"
 
 
 @dataclass(frozen=True, slots=True)
 class Net:
-    """What openings leave of a beam."""
+    """What is rated of a beam: with slab that counts as a flange, without its openings."""
 
     body: RatedBody | None = None
-    """None where there are no openings, or where none of it can be rated"""
+    """None where it is that of the beam, or where none of it can be rated"""
     reasons: tuple[Reason, ...] = ()
     remarks: tuple[Remark, ...] = ()
 
@@ -51,36 +53,54 @@ class Steel(Protocol):
         ...
 
 
-def net_of(beam: Beam, standing: Standing, loads: Sequence[Load], steel: Steel) -> Net:
-    """Take the openings off a beam, and judge what they do to its shear.
+def net_of(
+    beam: Beam,
+    standing: Standing,
+    loads: Sequence[Load],
+    steel: Steel,
+    slab: Counted = NO_SLAB,
+) -> Net:
+    """Add the slab that counts as a flange to a beam, take its openings off, and judge shear.
 
     Self weight stays that of the whole body, which is the greater, but where it may relieve: with
-    a fixed end, a moment or a load that acts upward.
-
-    A bar that runs through an opening is a reason.
+    a fixed end, a moment or a load that acts upward. A bar that runs through an opening is a
+    reason.
 
     Parameters
     ----------
-    beam, standing, loads, steel
+    beam, standing, loads, steel, slab
         The beam, how it stands, and all that is counted on.
     """
     if not beam.openings:
-        return Net()
+        return _without_openings(beam, slab)
     impossible = [*_tapered(beam), *_cut_bars(beam.openings, steel.bars)]
-    runs, gone = net_runs(beam)
+    runs, gone = net_runs(with_flanges(beam.runs, slab.flanges), beam.openings)
     if impossible or gone:
-        return Net(reasons=(*impossible, *gone))
+        return Net(reasons=(*impossible, *gone), remarks=slab.remarks)
     kinds = standing.span.start_support.kind, standing.span.end_support.kind
     held = kinds[0] != "free", kinds[1] != "free"
     judged = judged_openings(beam, Surroundings(standing.faces, held, loads, steel.stirrups))
     light = (all(held) and "fixed" in kinds) or _upward(loads)
     notes = [Remark(beam.key, STAGE, told(one), "note") for one in judged]
     taken = (RULE, NET_WEIGHT if light else GROSS_WEIGHT)
+    losses = (*slab.losses, *(loss for one in judged for loss in losses_of(one)))
+    weighed = net_runs(beam.runs, beam.openings)[0] if light else beam.runs
     return Net(
-        RatedBody(runs, tuple(loss for one in judged for loss in losses_of(one)), light),
+        RatedBody(runs, losses, weighed, slab.flanges),
         reasons=tuple(one.reason for one in judged if one.faults),
-        remarks=(*notes, *(Remark(beam.key, STAGE, text, "assumption") for text in taken)),
-    )
+        remarks=(
+            *slab.remarks, *notes,
+            *(Remark(beam.key, STAGE, text, "assumption") for text in taken),
+        ),
+    )  # fmt: skip
+
+
+def _without_openings(beam: Beam, slab: Counted) -> Net:
+    if not slab.flanges:
+        return Net(remarks=slab.remarks)
+    runs = with_flanges(beam.runs, slab.flanges)
+    body = RatedBody(runs, slab.losses, beam.runs, slab.flanges)
+    return Net(body, remarks=slab.remarks)
 
 
 def _tapered(beam: Beam) -> Iterator[Reason]:

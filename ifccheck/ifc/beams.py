@@ -15,6 +15,7 @@ from ifccheck.ifc.entity import ILL_TYPED, Entity, UnreadableError, text
 from ifccheck.ifc.materials import MaterialDefinition, Materials
 from ifccheck.ifc.plain_bodies import PlainBodies
 from ifccheck.ifc.products import Product
+from ifccheck.ifc.precast import told_precast
 from ifccheck.ifc.profiles import Profiles
 from ifccheck.ifc.properties import Sets
 from ifccheck.ifc.scope import Clues, judge
@@ -232,6 +233,7 @@ class BeamReader:
             greatest_density=concrete.greatest_density,
             cover=concrete.cover,
             openings=self._openings(step_id, straight, doubts),
+            precast=told_precast(self._context, step_id, _all_names(clues), sets),
             reasons=tuple(doubts.reasons),
             remarks=tuple(doubts.remarks),
         )

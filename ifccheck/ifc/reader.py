@@ -18,6 +18,7 @@ from ifccheck.ifc.plain_bodies import PlainBodies
 from ifccheck.ifc.products import Product, read_products
 from ifccheck.ifc.profiles import Profiles
 from ifccheck.ifc.reinforcement import read_reinforcement
+from ifccheck.ifc.slabs import SlabReader
 from ifccheck.ifc.step_table import StepTable
 from ifccheck.ifc.storeys import Storeys
 
@@ -79,6 +80,7 @@ def _read(opened: OpenedModel, mapping: Mapping[str, str], statements: StepTable
         storeys=storeys.all,
         remarks=(*opened.remarks, *_repeats(own), *reader.remarks, *members.remarks),
         unmeasured=members.unmeasured,
+        slabs=SlabReader(context, profiles).read() if beams else (),
     )
 
 

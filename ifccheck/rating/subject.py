@@ -62,7 +62,7 @@ class Subject:
     reasons: tuple[Reason, ...]
     remarks: tuple[Remark, ...]
     body: RatedBody | None = None
-    """What openings leave of the beam's body; None where there are none"""
+    """What is rated of the beam where that is not its body alone; None where it is"""
 
     @property
     def runs(self) -> tuple[Run, ...]:
@@ -72,7 +72,7 @@ class Subject:
     @property
     def weighed(self) -> tuple[Run, ...]:
         """The outlines that self weight is that of."""
-        return self.body.runs if self.body and self.body.light else self.beam.runs
+        return self.body.weighed if self.body else self.beam.runs
 
     @property
     def span(self) -> Span:
