@@ -121,7 +121,7 @@ def test_an_opening_through_the_web_divides_the_section() -> None:
 )
 def test_flange_beyond_an_opening_does_not_count(opening, left, right, width) -> None:
     """The web is 300 wide, the flange 1200 wide and 150 thick."""
-    runs, _ = net_runs(replace(subject().beam, runs=(Run(0.0, LENGTH, TEE),), openings=(opening,)))
+    runs, _ = net_runs((Run(0.0, LENGTH, TEE),), (opening,))
     run = next(run for run in runs if run.whole)
     assert run.whole is not None
     found = overhangs(run.outline.rings, run.whole.rings)
@@ -478,7 +478,7 @@ def test_self_weight_that_may_relieve_is_that_of_what_is_left(made: Subject) -> 
 def test_a_divided_section_that_no_rule_has_judged_is_not_rated_in_shear() -> None:
     """A body may be modelled with a hole in it, which no opening tells of."""
     made = subject(loads=(line("floor", 2.0),))
-    runs, _ = net_runs(replace(made.beam, openings=(hole(2500),)))
+    runs, _ = net_runs(made.beam.runs, (hole(2500),))
     beam = replace(made.beam, runs=tuple(replace(run, whole=None) for run in runs))
     rating = rated(replace(made, beam=beam))[1][0]
     assert rating.verdict is Verdict.NOT_RATED

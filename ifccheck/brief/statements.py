@@ -66,6 +66,14 @@ def statements(brief: Brief, matches: Matches) -> dict[str, BeamStatement]:
     }
 
 
+def slab_flange(brief: Brief, statement: BeamStatement) -> tuple[SlabFlange, str]:
+    """Return what slab counts as a flange of a beam, and where the brief says so."""
+    if statement.slab_flange is not None:
+        return statement.slab_flange, "brief, [[beams]]"
+    wanted: SlabFlange = "level" if brief.defaults.slab_flanges else "none"
+    return wanted, "brief, defaults.slab_flanges"
+
+
 def span_reason(
     statement: BeamStatement, beam: Beam, supports: tuple[Support, Support]
 ) -> Reason | None:

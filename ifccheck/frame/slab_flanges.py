@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Collection, Iterator, Sequence
 from dataclasses import dataclass
+from itertools import pairwise
 from typing import Literal
 
 from ifccheck.beam import Beam, Flange, Load, Remark, Run, ShearLoss
@@ -51,8 +52,7 @@ class Counted:
         The stirrups are those of the beam, and so is the depth that they serve.
         """
         edges = sorted({x for one in self.flanges for x in (one.start, one.end)})
-        stretches = zip(edges[:-1], edges[1:], strict=True)
-        found = ((start, end, self._height_on_top(start, end)) for start, end in stretches)
+        found = ((start, end, self._height_on_top(start, end)) for start, end in pairwise(edges))
         return tuple(ShearLoss(*each) for each in found if each[2] > 0.0)
 
     def _height_on_top(self, start: float, end: float) -> float:

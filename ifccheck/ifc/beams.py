@@ -14,8 +14,8 @@ from ifccheck.ifc.context import Context
 from ifccheck.ifc.entity import ILL_TYPED, Entity, UnreadableError, text
 from ifccheck.ifc.materials import MaterialDefinition, Materials
 from ifccheck.ifc.plain_bodies import PlainBodies
-from ifccheck.ifc.products import Product
 from ifccheck.ifc.precast import told_precast
+from ifccheck.ifc.products import Product
 from ifccheck.ifc.profiles import Profiles
 from ifccheck.ifc.properties import Sets
 from ifccheck.ifc.scope import Clues, judge

@@ -264,11 +264,12 @@ def _concentrated(frame: Frame, critical: Floats) -> Bools:
 
 
 def _opened(frame: Frame, critical: Floats) -> Bools:
-    """Whether an opening takes depth between the face and the section (B, 2)."""
+    """Whether an opening begins to take depth between the face and the section (B, 2)."""
     found = np.zeros(critical.shape, dtype=np.bool_)
     losses = frame.losses
-    found[losses.beam[losses.start <= critical[losses.beam, 0]], 0] = True
-    found[losses.beam[losses.end >= critical[losses.beam, 1]], 1] = True
+    (first, last), (near, far) = frame.faces[losses.beam].T, critical[losses.beam].T
+    found[losses.beam[(losses.start > first) & (losses.start <= near)], 0] = True
+    found[losses.beam[(losses.end < last) & (losses.end >= far)], 1] = True
     return found
 
 

@@ -1,0 +1,4 @@
+"""Joins what the model and the brief say of each beam into what its rating rests on."""
+
+from ifccheck.subjects.gathering import Gathered as Gathered
+from ifccheck.subjects.gathering import gather as gather
