@@ -128,6 +128,8 @@ class RatedBody:
     """What self weight is that of"""
     flanges: tuple[Flange, ...] = ()
     """Slab that counts"""
+    flange_source: str = ""
+    """Where the brief says so"""
 
 
 @dataclass(frozen=True, slots=True)

@@ -105,6 +105,17 @@ class Hole:
 
 
 @dataclass(frozen=True)
+class MadeSlab:
+    """A level slab in the building's axes."""
+
+    ring: Outline
+    bottom: float
+    thickness: float
+    name: str = "S-1"
+    holes: tuple[Outline, ...] = ()
+
+
+@dataclass(frozen=True)
 class Setting:
     """How a model is written."""
 
@@ -295,12 +306,28 @@ class Model:
             self.bars += made
         self._columns(beam, frame)
 
+    def add_slab(self, slab: MadeSlab) -> None:
+        frame, sign = Frame((0.0, 0.0, slab.bottom)), -1.0 if self.setting.mirrored else 1.0
+        placed, inner = self._frames(frame)
+        ring = tuple((sign * x, y) for x, y in slab.ring)
+        solid = self._extrusion(ring, inner, True, slab.thickness)
+        shape = self._shape(solid, "SweptSolid")
+        element = self._element("IfcSlab", slab.name, placed, shape)
+        for number, hole in enumerate(slab.holes):
+            ring = tuple((sign * x, y) for x, y in hole)
+            below = Frame(inner.point((0.0, 0.0, -50.0)), inner.angle)
+            body = self._extrusion(ring, below, True, slab.thickness + 100.0)
+            self._void(element, body, f"hole {number} of {slab.name}")
+
     def _opening(self, beam: MadeBeam, hole: Hole, host: Any, inner: Frame, name: str) -> None:
         (y0, y1), (z0, z1) = (tuple(map(self._y, hole.y)), hole.z)
         ring = ((y0, z0), (y1, z0), (y1, z1), (y0, z1))
         start = min(self._x(beam, x) for x in hole.x)
         frame = Frame(inner.point((start, 0.0, 0.0)), inner.angle)
         solid = self._extrusion(ring, frame, False, hole.x[1] - hole.x[0])
+        self._void(host, solid, name)
+
+    def _void(self, host: Any, solid: Any, name: str) -> None:
         placement = self.make("IfcLocalPlacement", host.ObjectPlacement, self._axes(Frame()))
         opening = self.rooted(
             "IfcOpeningElement", name, Name=name, ObjectPlacement=placement,
@@ -421,11 +448,15 @@ class Model:
         )  # fmt: skip
 
 
-def model(*beams: MadeBeam, setting: Setting | None = None) -> bytes:
+def model(
+    *beams: MadeBeam, setting: Setting | None = None, slabs: Sequence[MadeSlab] = ()
+) -> bytes:
     """The bytes of an IFC model of the beams."""
     made = Model(setting or Setting())
     for beam in beams:
         made.add_beam(beam)
+    for slab in slabs:
+        made.add_slab(slab)
     return made.finish()
 
 

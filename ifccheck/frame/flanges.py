@@ -181,6 +181,8 @@ class _Around:
         length = self.beam.length
         whole = bridged(apart(found), self._framing(strip), strip.face)
         for one in spread(whole, length, FARTHEST * length):
+            if not strip.on_top and one.reach < LEAST:
+                continue
             inner = strip.outward * strip.middle if strip.on_top else strip.face - LAP
             outer = strip.face + one.reach
             limit = f"half the clear distance to {one.limit}" if one.limit else "its edge"

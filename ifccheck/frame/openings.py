@@ -86,7 +86,7 @@ def net_of(
     losses = (*slab.losses, *(loss for one in judged for loss in losses_of(one)))
     weighed = net_runs(beam.runs, beam.openings)[0] if light else beam.runs
     return Net(
-        RatedBody(runs, losses, weighed, slab.flanges),
+        RatedBody(runs, losses, weighed, slab.flanges, slab.source),
         reasons=tuple(one.reason for one in judged if one.faults),
         remarks=(
             *slab.remarks, *notes,
@@ -99,7 +99,7 @@ def _without_openings(beam: Beam, slab: Counted) -> Net:
     if not slab.flanges:
         return Net(remarks=slab.remarks)
     runs = with_flanges(beam.runs, slab.flanges)
-    body = RatedBody(runs, slab.losses, beam.runs, slab.flanges)
+    body = RatedBody(runs, slab.losses, beam.runs, slab.flanges, slab.source)
     return Net(body, remarks=slab.remarks)
 
 

@@ -95,7 +95,7 @@ def _reach_at(plan: Polygon, webs: Webs, side: Side, x: float) -> tuple[float, s
     for other, name in webs:
         beyond = _covered(other, x, side.face + STEP)
         if beyond is not None:
-            found = min(found, ((beyond[0] - STEP - side.face) / 2.0, name))
+            found = min(found, ((beyond[0] - side.face) / 2.0, name))
     return found
 
 
@@ -171,6 +171,8 @@ def _is_filled(start: float, end: float, framing: Sequence[Polygon], face: float
 def spread(found: Sequence[Reach], length: float, farthest: float) -> list[Reach]:
     """The reaches with what is added along the beam spread at 45 degrees, by safe steps.
 
+    At a place counts no more than any other place has, and the distance between them.
+
     Parameters
     ----------
     found
@@ -180,27 +182,33 @@ def spread(found: Sequence[Reach], length: float, farthest: float) -> list[Reach
     farthest
         No flange is wider than this, so that nothing needs longer to spread [mm].
     """
-    return joined(list(_spread(found, length, farthest)))
+    levels = [(one.start, one.end, one.reach) for one in found]
+    levels += [(start, end, 0.0) for start, end in _gaps(found, length)]
+    return joined([piece for one in found for piece in _grown(one, levels, farthest)])
 
 
-def _spread(found: Sequence[Reach], length: float, farthest: float) -> Iterator[Reach]:
-    for i, one in enumerate(found):
-        before = found[i - 1] if i and one.start - found[i - 1].end < SAME else None
-        after = found[i + 1] if i + 1 < len(found) and found[i + 1].start - one.end < SAME else None
-        lead = 0.0 if one.start < SAME else _grown(one, before, farthest)
-        trail = 0.0 if one.end > length - SAME else _grown(one, after, farthest)
-        start, end = one.start + lead, one.end - trail
-        if start >= end:  # there is no room to grow: as little as on either side
-            start = end = (one.start + one.end) / 2.0
-        if before and lead > 0.0:
-            yield replace(before, start=one.start, end=start)
+def _gaps(found: Sequence[Reach], length: float) -> Iterator[tuple[float, float]]:
+    edges = [0.0, *(x for one in found for x in (one.start, one.end)), length]
+    for start, end in zip(edges[::2], edges[1::2], strict=True):
+        if end - start >= SAME:
+            yield start, end
+
+
+def _grown(
+    one: Reach, levels: Sequence[tuple[float, float, float]], farthest: float
+) -> Iterator[Reach]:
+    """Steps of one stretch: within it what may count first grows and then falls again."""
+    most = min(one.reach, farthest)
+
+    def counts(x: float) -> float:
+        return min(reach + max(start - x, x - end, 0.0) for start, end, reach in levels)
+
+    grown = (end + most - reach for _, end, reach in levels if end <= one.start)
+    falls = (start - most + reach for start, _, reach in levels if start >= one.end)
+    first, last = max((one.start, *grown)), min((one.end, *falls))
+    if first > last:
+        first = last = min(max((first + last) / 2.0, one.start), one.end)
+    for start, end in pairwise((one.start, first, last, one.end)):
+        reach = one.reach if (start, end) == (first, last) else min(counts(start), counts(end))
         if end > start:
-            yield replace(one, start=start, end=end)
-        if after and trail > 0.0:
-            yield replace(after, start=end, end=one.end)
-
-
-def _grown(one: Reach, neighbour: Reach | None, farthest: float) -> float:
-    """Length over which one stretch grows out of its neighbour [mm]."""
-    least = neighbour.reach if neighbour else 0.0
-    return max(min(one.reach, farthest) - least, 0.0)
+            yield replace(one, start=start, end=end, reach=reach)

@@ -43,6 +43,8 @@ class Counted:
     """The slab that counts as a flange of a beam."""
 
     flanges: tuple[Flange, ...] = ()
+    source: str = ""
+    """Where the brief says so"""
     remarks: tuple[Remark, ...] = ()
 
     @property
@@ -77,7 +79,7 @@ def counted(beam: Beam, asked: Asked, loads: Sequence[Load]) -> Counted:
     remarks = [Remark(beam.key, STAGE, text, "assumption") for text in texts]
     if flanges and (text := _too_light(beam, flanges, asked, loads)):
         remarks.append(Remark(beam.key, STAGE, text, "doubt"))
-    return Counted(flanges, tuple(remarks))
+    return Counted(flanges, asked.source, tuple(remarks))
 
 
 def _weaker(flange: Flange, strength: float) -> bool:
