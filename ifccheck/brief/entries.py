@@ -10,7 +10,6 @@ from ifccheck.brief.model import (
     BeamEntry,
     MaterialEntry,
     Selection,
-    SlabFlange,
     SupportEntry,
 )
 from ifccheck.brief.places import Path, shown
@@ -78,16 +77,8 @@ def beam_entry(index: int, table: schema.BeamTable) -> BeamEntry:
         unloaded=table.unloaded,
         loads_complete=table.loads_complete,
         torsion=table.torsion,
-        slab_flange=_slab_flange(table.slab_flange),
+        slab_flange=table.slab_flange,
     )
-
-
-def _slab_flange(stated: bool | str | None) -> SlabFlange | None:
-    if stated is None:
-        return None
-    if stated == "on top":
-        return "on top"
-    return "level" if stated else "none"
 
 
 def material_entry(index: int, table: schema.MaterialTable) -> MaterialEntry:

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Callable
-from typing import Annotated, Any, Literal
+from typing import Annotated, Any
 
 from pydantic import (
     BaseModel,
@@ -14,7 +14,7 @@ from pydantic import (
 )
 
 from ifccheck.beam import CombinationKind, Face, Nature, SourceName, SupportKind
-from ifccheck.brief.model import Position
+from ifccheck.brief.model import Position, SlabFlange
 from ifccheck.brief.quantities import (
     CONCRETE_STRENGTH,
     COVER,
@@ -72,6 +72,15 @@ def _plain_factor(value: object) -> float:
     if not 0.0 <= value <= 10.0:  # also where value is nan
         raise ValueError(f"is {value}: a factor from 0 to 10 is needed")
     return float(value)
+
+
+def _slab_flange(value: object) -> SlabFlange:
+    """Which slab counts as a flange: none, what is level with the beam, also what is on top."""
+    if value == "on top":
+        return "on top"
+    if not isinstance(value, bool):
+        raise ValueError('must be true, false or "on top"')
+    return "level" if value else "none"
 
 
 Name = Annotated[
@@ -190,7 +199,7 @@ class BeamTable(SelectingTable):
     unloaded: bool | None = None
     loads_complete: bool | None = None
     torsion: bool | None = None
-    slab_flange: bool | Literal["on top"] | None = None
+    slab_flange: Annotated[SlabFlange, PlainValidator(_slab_flange)] | None = None
 
 
 class MaterialTable(MaterialsTable, SelectingTable):
