@@ -164,6 +164,20 @@ class Defaults:
 
 
 @dataclass(frozen=True, slots=True)
+class Scope:
+    """Element queries by their place: what is a beam beside what is one by class, and what is
+    left out."""
+
+    also: Mapping[str, str]
+    leave_out: Mapping[str, str]
+    optional: bool
+    """True where the queries may reach nothing."""
+
+
+NO_SCOPE = Scope({}, {}, False)
+
+
+@dataclass(frozen=True, slots=True)
 class Brief:
     """The engineer's brief, validated."""
 
@@ -186,6 +200,7 @@ class Brief:
     beams: tuple[BeamEntry, ...] = ()
     materials: tuple[MaterialEntry, ...] = ()
     combinations: tuple[CombinationEntry, ...] = ()
+    scope: Scope = NO_SCOPE
 
     def entries(self) -> Iterator[Entry]:
         """Every entry with a selection, in the order of the brief's tables."""

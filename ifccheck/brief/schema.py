@@ -152,11 +152,22 @@ class CaseTable(Table):
     removable: bool = False
 
 
+Query = Annotated[str, StringConstraints(min_length=1, max_length=2000)]
+
+
+class ScopeTable(Table):
+    """``[scope]``"""
+
+    also: list[Query] = Field(default_factory=list)
+    leave_out: list[Query] = Field(default_factory=list)
+    optional: bool = False
+
+
 class SelectingTable(Table):
     """What every entry with a selection has."""
 
     beams: list[Name] | None = Field(default=None, min_length=1)
-    where: Annotated[str, StringConstraints(min_length=1, max_length=2000)] | None = None
+    where: Query | None = None
     optional: bool = False
 
 
@@ -220,6 +231,7 @@ class BriefTable(Table):
     """The whole file."""
 
     basis: BasisTable
+    scope: ScopeTable = Field(default_factory=ScopeTable)
     defaults: DefaultsTable = Field(default_factory=DefaultsTable)
     reinforcement: ReinforcementTable = Field(default_factory=ReinforcementTable)
     cases: dict[Name, CaseTable] = Field(default_factory=dict)
@@ -232,6 +244,7 @@ class BriefTable(Table):
 
 _TABLES: dict[str, type[Table]] = {
     "basis": BasisTable,
+    "scope": ScopeTable,
     "defaults": DefaultsTable,
     "reinforcement": ReinforcementTable,
     "cases": CaseTable,

@@ -74,9 +74,9 @@ def meetings(
         return {}
     from shapely import STRtree
 
-    plans, webs = [_polygon(slab.rings) for slab in slabs], webs_of(members)
-    slab_tree, web_tree = STRtree(plans), STRtree([web.plan for web in webs])
     concrete = {beam.step_id for beam in beams}
+    plans, webs = [_polygon(slab.rings) for slab in slabs], webs_of(members, concrete)
+    slab_tree, web_tree = STRtree(plans), STRtree([web.plan for web in webs])
     found: dict[str, Meeting] = {}
     for beam in beams:
         if not beam.runs or beam.axis is None or abs(beam.axis.x[2]) > HORIZONTAL:

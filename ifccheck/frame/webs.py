@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Collection, Sequence
 from itertools import product
 from typing import TYPE_CHECKING, NamedTuple
 
@@ -35,9 +35,9 @@ class Web(NamedTuple):
         return abs(self.way[0] * axis.x[0] + self.way[1] * axis.x[1]) >= SAME_WAY
 
 
-def webs_of(members: Sequence[Member]) -> list[Web]:
-    """The members that may carry a slab."""
-    return [_web(member) for member in members if _may_carry(member)]
+def webs_of(members: Sequence[Member], beams: Collection[int]) -> list[Web]:
+    """The members that may carry a slab: by their class, or as beams in scope by step id."""
+    return [_web(one) for one in members if one.step_id in beams or _may_carry(one)]
 
 
 def _may_carry(member: Member) -> bool:
