@@ -8,7 +8,7 @@ from itertools import pairwise
 
 import numpy as np
 import pytest
-from hypothesis import given
+from hypothesis import given, settings
 from hypothesis import strategies as st
 from shapely import Polygon, box
 from shapely.ops import unary_union
@@ -61,6 +61,7 @@ def texts(made: Subject) -> str:
 # Sections ----------------------------------------------------------------------------------------
 
 
+@settings(deadline=None, max_examples=60)
 @given(
     st.lists(
         st.tuples(

@@ -233,7 +233,7 @@ class BeamReader:
             greatest_density=concrete.greatest_density,
             cover=concrete.cover,
             openings=self._openings(step_id, straight, doubts),
-            precast=told_precast(self._context, step_id, _all_names(clues), sets),
+            precast=told_precast(self._context, step_id, clues, sets),
             reasons=tuple(doubts.reasons),
             remarks=tuple(doubts.remarks),
         )

@@ -3,11 +3,13 @@
 from __future__ import annotations
 
 import re
-from collections.abc import Iterable
+from functools import lru_cache
 from typing import TYPE_CHECKING
 
 from ifccheck.ifc.entity import get
 from ifccheck.ifc.properties import Sets
+from ifccheck.ifc.scope import Clues
+from ifccheck.ifc.strength import GENERAL
 
 if TYPE_CHECKING:
     from ifccheck.ifc.context import Context
@@ -20,14 +22,18 @@ PRECAST = re.compile(
 MADE_ELSEWHERE = re.compile(r"factory|shop|off-?site|plant", re.IGNORECASE)
 HOW_MADE = ("ConstructionMethod", "CastingMethod")
 """Properties of Pset_ConcreteElementGeneral that tell how a member is made."""
-GENERAL = "Pset_ConcreteElementGeneral"
 PRECAST_SETS = ("Pset_PrecastConcreteElementGeneral", "Pset_PrecastConcreteElementFabrication")
 
 
-def told_precast(context: Context, step_id: int, names: Iterable[str], sets: Sets) -> str:
+@lru_cache(maxsize=8192)
+def _speaks_of_precast(name: str) -> bool:
+    return PRECAST.search(name) is not None
+
+
+def told_precast(context: Context, step_id: int, clues: Clues, sets: Sets) -> str:
     """Return what tells that a member is precast; empty where nothing does."""
-    for name in names:
-        if PRECAST.search(name):
+    for name in (*clues.definition.names, *clues.names):
+        if _speaks_of_precast(name):
             return f'name "{name}"'
     for set_name in PRECAST_SETS:
         if set_name in sets:

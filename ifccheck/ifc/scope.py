@@ -90,7 +90,7 @@ def _judged(
     )
     if found.left_out is not None:
         return found
-    return _other_use(named, clues.names, concrete) or found
+    return _other_use(named, names, concrete) or found
 
 
 def _use(evidence: Iterable[Evidence], names: Iterable[str], concrete: bool) -> Scope | None:

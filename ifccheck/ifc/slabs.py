@@ -10,6 +10,7 @@ import numpy as np
 from ifccheck.beam import Slab
 from ifccheck.ifc.bodies import BOOLEANS, Placed, Prism, body_items, extrusion
 from ifccheck.ifc.clips import Cloud
+from ifccheck.ifc.concretes import Concretes
 from ifccheck.ifc.entity import (
     ILL_TYPED,
     NAME,
@@ -26,7 +27,7 @@ from ifccheck.ifc.points import points_of
 from ifccheck.ifc.precast import told_precast
 from ifccheck.ifc.profiles import Profiles
 from ifccheck.ifc.scope import Clues, judge
-from ifccheck.ifc.strength import Strengths, concrete_strength
+from ifccheck.ifc.strength import GENERAL
 from ifccheck.ifc.tessellation import tessellated
 from ifccheck.ifc.vectors import unit
 from ifccheck.ifc.vocabulary import speaks_of_prestress
@@ -41,7 +42,6 @@ LEVEL = 0.9999
 """Least z of the unit vectors of what lies level."""
 LEAST_PART = 1e4
 """Parts of a slab smaller than this are no flange [mm2]."""
-GENERAL = "Pset_ConcreteElementGeneral"
 
 
 class SlabReader:
@@ -51,7 +51,7 @@ class SlabReader:
         self._context = context
         self._profiles = profiles
         self._materials = Materials(context)
-        self._strengths = Strengths(context)
+        self._concretes = Concretes(context)
 
     def read(self) -> tuple[Slab, ...]:
         """Return every slab that lies level and is extruded upright; others are no flange."""
@@ -92,18 +92,19 @@ class SlabReader:
         step_id = entity.id()
         definition = self._materials.of(step_id)
         sets = self._context.properties.of(step_id)
-        names = tuple(filter(None, (*self._names(entity), *(m.name for m in definition.materials))))
-        scope = judge(Clues(definition, names, False, "StrengthClass" in sets.get(GENERAL, {})))
-        strength = concrete_strength(self._strengths.of(definition, sets), "")
-        given = strength.given.value if strength.given else None
-        precast = told_precast(self._context, step_id, names, sets)
+        names = tuple(filter(None, self._names(entity)))
+        clues = Clues(definition, names, False, "StrengthClass" in sets.get(GENERAL, {}))
+        scope, concrete = judge(clues), self._concretes.of(definition, sets, ())
+        given = concrete.strength.value if concrete.strength else None
+        precast = told_precast(self._context, step_id, clues, sets)
+        prestressed = any(map(speaks_of_prestress, (*definition.names, *names)))
         doubts = (
             f"it is of {scope.left_out[0]}" if scope.left_out else "",
             scope.doubt or "",
             "it is made of several materials" if len(definition.materials) > 1 else "",
             f"it is precast: {precast}" if precast else "",
-            "it is prestressed" if any(map(speaks_of_prestress, names)) else "",
-            "its strength cannot be read" if strength.reason else "",
+            "it is prestressed" if prestressed else "",
+            "its strength cannot be read" if concrete.strength_reason else "",
         )
         return given, next(filter(None, doubts), "")
 
