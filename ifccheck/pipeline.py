@@ -198,7 +198,8 @@ def _choice(opened: OpenedModel, brief: Brief | None) -> Choice:
     if brief is None:
         return NO_CHOICE
     try:
-        return choose(opened, brief.scope.also, brief.scope.leave_out)
+        scope = brief.scope
+        return choose(opened, scope.also, scope.leave_out, slabs=brief.asks_for_slabs)
     except BriefError as error:
         raise BriefError(f"{brief.file_name}: {error}") from None
 

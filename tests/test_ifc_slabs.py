@@ -8,6 +8,8 @@ import pytest
 from shapely import Polygon
 
 from ifccheck.beam import Slab
+from ifccheck.ifc.reader import read_model
+from ifccheck.ifc.scoping import Choice
 from tests.ifc_models import Building, only_beam, volume_and_points
 
 LENGTH = 6000.0
@@ -27,9 +29,20 @@ def slab(building: Building, *items: Any, material: str = "Concrete C30/37", **n
     return product
 
 
+def slabs_of(building: Building) -> tuple[Slab, ...]:
+    return read_model(building.open(), {}, None, Choice(slabs=True)).slabs
+
+
 def only_slab(building: Building) -> Slab:
-    (found,) = building.read().slabs
+    (found,) = slabs_of(building)
     return found
+
+
+def test_slabs_are_read_only_where_they_are_asked_for() -> None:
+    building = Building()
+    with_beam(building)
+    slab(building)
+    assert building.read().slabs == ()
 
 
 def area(found: Slab) -> float:
@@ -96,7 +109,7 @@ def test_an_opening_that_divides_a_slab_leaves_two() -> None:
     product = slab(building, Name="S-1")
     across = building.extrusion(building.rectangle(300.0, 9000.0), 400.0, at=(2000.0, 0.0, 2900.0))
     building.void(product, across)
-    found = building.read().slabs
+    found = slabs_of(building)
     assert len(found) == 2
     assert {one.step_id for one in found} == {product.id()}
 
@@ -150,7 +163,7 @@ def test_a_cut_slab_and_one_with_an_unreadable_opening_count_for_nothing() -> No
     slab(building, building.clipped(plain, building.half_space((0, 0, 150.0), (0, 0, 1))))
     opened = slab(building, building.extrusion(ring, 200.0))
     building.void(opened)
-    cut, unread = building.read().slabs
+    cut, unread = slabs_of(building)
     assert cut.doubt == "its body is cut"
     assert "in it cannot be read" in unread.doubt
 
@@ -164,14 +177,14 @@ def test_sloping_slabs_and_other_bodies_are_passed_over() -> None:
     edge = building.outline((0, 0), (4000, 0), (4000, 200), (0, 200))
     slab(building, building.extrusion(edge, 2500.0, z=(0, -1, 0), x=(1, 0, 0)))
     building.member("IfcSlab")
-    assert building.read().slabs == ()
+    assert slabs_of(building) == ()
 
 
 def test_no_slab_is_read_where_there_is_no_beam_in_scope() -> None:
     building = Building()
     with_beam(building, material="Steel S355")
     slab(building)
-    assert building.read().slabs == ()
+    assert slabs_of(building) == ()
 
 
 # What says that a beam is precast -----------------------------------------------------------------

@@ -287,15 +287,17 @@ def test_faults_of_the_table_are_told(tmp_path: Path, line: str, why: str) -> No
 
 def test_a_selected_beam_is_the_next_web_of_its_neighbour(tmp_path: Path) -> None:
     """What is no IfcBeam by class halves the slab all the same where it is taken in."""
-    from ifccheck.frame.flanges import meetings
+    from ifccheck.frame.flanges import Slabs
     from tests.models import MadeSlab
 
     made = Model(Setting())
     made.add_beam(proxy("B-1", class_name="IfcBeam"))
     made.add_beam(proxy("HB-2", 3000.0))
     made.add_slab(MadeSlab(((0, -500), (6300, -500), (6300, 4000), (0, 4000)), 450.0, 150.0))
-    run = rate_model(tmp_path, made.finish(), scoped("also = ['IfcBuildingElementProxy']"))
+    text = scoped("also = ['IfcBuildingElementProxy']")
+    text = text.replace("[defaults]", "[defaults]\nslab_flanges = true")
+    run = rate_model(tmp_path, made.finish(), text)
     model = run.rated[0].read.model
     (beam,) = [beam for beam in model.beams if beam.name == "B-1"]
-    found = meetings(model.beams, model.slabs, model.members)[beam.key]
+    found = Slabs(model.beams, model.slabs, model.members).meeting(beam)
     assert max(flange.left for flange in found.flanges) == pytest.approx(150.0 + 2700.0 / 2.0)

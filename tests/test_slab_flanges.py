@@ -2,16 +2,17 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from dataclasses import replace
 from pathlib import Path
 from typing import Any
 
 import numpy as np
 import pytest
-from shapely import Polygon
+from shapely import LineString, Polygon
 
 from ifccheck.beam import Axis, Beam, Box, Flange, Member, Outline, Run, ShearLoss, Slab
-from ifccheck.frame.flanges import LOWER_HALF, Meeting, meetings
+from ifccheck.frame.flanges import LOWER_HALF, NO_MEETING, Meeting, Slabs
 from ifccheck.frame.net_outlines import with_flanges
 from ifccheck.frame.reaches import Reach, Side, bridged, reaches, spread
 from ifccheck.frame.slab_flanges import Asked, counted
@@ -68,13 +69,13 @@ def made_slab(
     return replace(Slab(90, "S-1 (IfcSlab)", tuple(rings), *z, None), **changes)
 
 
-def met(
-    slab: Slab, *others: Member, beam: Beam | None = None, also: tuple[Beam, ...] = ()
-) -> Meeting:
+def met(slab: Slab, *others: Member, beam: Beam | None = None) -> Meeting:
     beam = beam or made_beam()
-    members = (member_of(beam), *others)
-    found = meetings([beam], [slab], members)
-    return found.get("B", Meeting((), ()))
+    return met_by(beam, [slab], [member_of(beam), *others])
+
+
+def met_by(beam: Beam, slabs: Sequence[Slab], members: Sequence[Member], *more: Beam) -> Meeting:
+    return Slabs([beam, *more], slabs, members).meeting(beam)
 
 
 def boxes(meeting: Meeting) -> list[tuple[float, ...]]:
@@ -136,7 +137,7 @@ def test_a_next_web_carries_the_slab_at_its_level(low: float, high: float, count
     ],
 )
 def test_slabs_that_do_not_meet(slab: Slab, why: str) -> None:
-    assert met(slab) == Meeting((), ()), why
+    assert met(slab) == NO_MEETING, why
 
 
 def test_a_small_gap_is_a_joint_of_the_drawing() -> None:
@@ -160,15 +161,23 @@ def test_a_slab_in_the_lower_half_counts_for_nothing() -> None:
     assert met(made_slab(z=(300.0, 450.0))).flanges
 
 
-def test_a_slab_on_top_must_cover_the_beam() -> None:
+def test_a_slab_on_top_must_cover_half_of_the_beam() -> None:
     found = met(made_slab(y=(-150.0, 900.0), z=(600.0, 750.0)))
     assert all(flange.on_top for flange in found.flanges)
     assert boxes(found) == [
         pytest.approx((0, LENGTH, 0, 900, 600, 750)),
         pytest.approx((0, LENGTH, -150, 0, 600, 750)),
     ]
-    assert met(made_slab(y=(-100.0, 900.0), z=(600.0, 750.0))).flanges == ()
-    assert met(made_slab(y=(0.0, 900.0), z=(600.0, 750.0))).flanges == ()
+    # from its middle on, for a panel may end there and another begin
+    assert met(made_slab(y=(-100.0, 900.0), z=(600.0, 750.0))).flanges == found.flanges[:1]
+    assert met(made_slab(y=(0.0, 900.0), z=(600.0, 750.0))).flanges == found.flanges[:1]
+    assert met(made_slab(y=(20.0, 900.0), z=(600.0, 750.0))).flanges == ()
+    panels = [
+        made_slab(y=(0.0, 900.0), z=(600.0, 750.0)),
+        made_slab(y=(-150.0, 0.0), z=(600.0, 750.0)),
+    ]
+    beam = made_beam()
+    assert boxes(met_by(beam, panels, [member_of(beam)])) == boxes(found)
     left, _ = met(made_slab(y=(-150.0, 900.0), z=(608.0, 750.0))).flanges
     assert (left.bottom, left.top) == (600.0, 742.0)
 
@@ -209,15 +218,15 @@ def test_panels_parted_by_a_concrete_beam_across_are_one_flange() -> None:
     slabs = [made_slab(x=(0.0, 2900.0)), made_slab(x=(3100.0, LENGTH), name="S-2 (IfcSlab)")]
     members = (member_of(beam), crossing)
     other = made_beam("across", 9999.0, crossing.step_id)
-    whole = meetings([beam, other], slabs, members)["B"]
+    whole = met_by(beam, slabs, members, other)
     assert [(f.start, f.end) for f in whole.flanges] == [
         pytest.approx((0, 3100)), pytest.approx((3100, LENGTH))
     ]  # fmt: skip
-    steel = meetings([beam], slabs, members)["B"]
+    steel = met_by(beam, slabs, members)
     assert [(f.start, f.end) for f in steel.flanges] == [
         pytest.approx((0, 2300)), pytest.approx((3700, LENGTH))
     ]  # fmt: skip
-    shallow = meetings([beam, other], slabs, (member_of(beam), across(3000.0, low=500.0)))["B"]
+    shallow = met_by(beam, slabs, (member_of(beam), across(3000.0, low=500.0)), other)
     assert len(shallow.flanges) == 2
     assert shallow.flanges[0].end == pytest.approx(2300)
 
@@ -249,9 +258,9 @@ def test_beams_on_a_slope_and_without_a_body_meet_nothing() -> None:
     beam = made_beam()
     assert beam.axis is not None
     slope = replace(beam, axis=replace(beam.axis, x=(0.99, 0.0, 0.14)))
-    assert met(made_slab(), beam=slope) == Meeting((), ())
+    assert met(made_slab(), beam=slope) == NO_MEETING
     bare = replace(beam, axis=None, runs=())
-    assert meetings([bare], [made_slab()], [member_of(beam)]) == {}
+    assert met_by(bare, [made_slab()], [member_of(beam)]) == NO_MEETING
 
 
 def test_a_doubtful_slab_is_named_and_counts_for_nothing() -> None:
@@ -274,15 +283,19 @@ def test_reaches_against_shapely() -> None:
     """The least overhang of a random polygon at many places is never less than what is found."""
     rng = np.random.default_rng(7)
     side = Side(150.0, 140.0, 160.0, 30.0)
+    found_any = 0
     for _ in range(30):
         xs = np.sort(rng.uniform(0.0, 6000.0, 6))
         ys = rng.uniform(250.0, 3000.0, 8)
         top = [(x, y) for x, y in zip((0.0, *xs, 6000.0), ys, strict=True)]
-        plan = Polygon([(0.0, 150.0), (6000.0, 150.0), *reversed(top)])
-        for found in reaches(made_slab(), plan, [], side, 0.0, 6000.0):
+        ring = ((0.0, 150.0), (6000.0, 150.0), *reversed(top))
+        plan = Polygon(ring)
+        for found in reaches(made_slab(), (ring,), [], side, 0.0, 6000.0):
+            found_any += 1
             for x in np.linspace(found.start + 1.0, found.end - 1.0, 20):
-                deep = float(np.interp(x, [p[0] for p in top], [p[1] for p in top])) - 150.0
+                deep = plan.intersection(LineString([(x, 0.0), (x, 9e3)])).length
                 assert found.reach <= deep + 1.0
+    assert found_any >= 30
 
 
 def test_spreading_never_adds() -> None:
@@ -310,19 +323,20 @@ def test_spreading_never_adds() -> None:
 def test_bridging_needs_concrete_over_the_whole_gap() -> None:
     slab = made_slab()
     panels = [Reach(0.0, 2900.0, 900.0, "", slab), Reach(3100.0, 6000.0, 700.0, "", slab)]
-    beam = Polygon([(2900, -1000), (3100, -1000), (3100, 1000), (2900, 1000)])
+    beam = (((2900, -1000), (3100, -1000), (3100, 1000), (2900, 1000)),)
     assert [one.reach for one in bridged(panels, [beam], 150.0)] == [900.0, 700.0]
-    narrow = Polygon([(2950, -1000), (3050, -1000), (3050, 1000), (2950, 1000)])
+    narrow = (((2950, -1000), (3050, -1000), (3050, 1000), (2950, 1000)),)
     assert bridged(panels, [narrow], 150.0) == panels
+    away = (((2900, 300), (3100, 300), (3100, 1000), (2900, 1000)),)
+    assert bridged(panels, [away], 150.0) == panels
 
 
 # What counts -------------------------------------------------------------------------------------
 
 
-def asked(meeting: Meeting | None, wanted: Any = "level", **changes: Any) -> Asked:
-    return replace(
-        Asked(meeting, wanted, "brief, test", 30.0, 24e-6, {"self", "dead"}), **changes
-    )  # fmt: skip
+def asked(meeting: Meeting, wanted: Any = "level") -> Asked:
+    near = tuple(dict.fromkeys(f.origin.partition(", to ")[0] for f in meeting.flanges))
+    return Asked(near, meeting, wanted, "brief, test", 30.0, 24e-6, {"self", "dead"})
 
 
 ON_TOP = made_slab(y=(-900.0, 900.0), z=(600.0, 750.0))
@@ -358,8 +372,25 @@ def test_precast_beams_never_have_a_slab_as_flange() -> None:
 
 
 def test_nothing_is_said_where_no_slab_is_met() -> None:
-    assert counted(made_beam(), asked(None), ()).remarks == ()
+    assert counted(made_beam(), asked(NO_MEETING), ()).remarks == ()
     assert counted(made_beam(), asked(Meeting((), ("S: timber",)), "none"), ()).remarks == ()
+
+
+def plate(name: str, x: float, z: float, ifc_class: str = "IfcSlab") -> Member:
+    """A slab of 6 m by 3 m beside the beam, 150 thick."""
+    box = Box((x, 1650.0, z), ((1.0, 0.0, 0.0), (0.0, 1.0, 0.0), (0.0, 0.0, 1.0)),
+              (3000.0, 1500.0, 75.0))  # fmt: skip
+    return Member(hash(name), name, ifc_class, name, "Level 1", box)
+
+
+def test_slabs_near_are_named_by_their_boxes() -> None:
+    beam = made_beam()
+    members = [
+        member_of(beam), plate("S-1", 3000.0, 525.0), plate("far", 9020.0, 525.0),
+        plate("above", 3000.0, 690.0), plate("below", 3000.0, -80.0),
+        plate("covering", 3000.0, 525.0, "IfcCovering"),
+    ]  # fmt: skip
+    assert Slabs([beam], (), members).names_near(beam) == ("S-1 (IfcSlab)",)
 
 
 @pytest.mark.parametrize(("intensity", "light"), [(10.0, True), (10.5, False)])

@@ -202,6 +202,13 @@ class Brief:
     combinations: tuple[CombinationEntry, ...] = ()
     scope: Scope = NO_SCOPE
 
+    @property
+    def asks_for_slabs(self) -> bool:
+        """Slab may count as a flange of some beam."""
+        return self.defaults.slab_flanges or any(
+            entry.slab_flange not in (None, "none") for entry in self.beams
+        )
+
     def entries(self) -> Iterator[Entry]:
         """Every entry with a selection, in the order of the brief's tables."""
         yield from self.loads

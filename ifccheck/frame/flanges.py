@@ -14,15 +14,18 @@ from __future__ import annotations
 from collections import defaultdict
 from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
+from functools import cached_property, lru_cache
 from typing import TYPE_CHECKING, NamedTuple
 
-from ifccheck.beam import Axis, Beam, Flange, Member, Ring, Run, Slab
+from ifccheck.beam import Axis, Beam, Flange, Member, Outline, Ring, Run, Slab
+from ifccheck.frame.contacts import kind_of
 from ifccheck.frame.figures import figure_of, narrowest
-from ifccheck.frame.reaches import Reach, Side, apart, bridged, reaches, spread
-from ifccheck.frame.webs import Web, webs_of
+from ifccheck.frame.reaches import Plan, Reach, Side, apart, bridged, reaches, spread
+from ifccheck.frame.webs import Web, web_of, webs_of
 
 if TYPE_CHECKING:
-    from shapely import Polygon
+    from shapely import STRtree
+    from shapely.geometry.base import BaseGeometry
 
 TOUCHING = 10.0
 """Gap up to which a slab meets a beam, and difference up to which they are level [mm]"""
@@ -47,6 +50,9 @@ class Meeting:
     """Slabs of which nothing counts, and why"""
 
 
+NO_MEETING = Meeting((), ())
+
+
 class _Strip(NamedTuple):
     """Slab along one side of a beam, at one level; what has one such key is of one piece."""
 
@@ -58,10 +64,8 @@ class _Strip(NamedTuple):
     middle: float
 
 
-def meetings(
-    beams: Sequence[Beam], slabs: Sequence[Slab], members: Sequence[Member]
-) -> dict[str, Meeting]:
-    """What the slabs of a model may be to each beam that they meet, by the beam's key.
+class Slabs:
+    """The slabs of a model, and which of them meet its beams.
 
     Parameters
     ----------
@@ -70,40 +74,103 @@ def meetings(
     slabs, members
         Of the same model, the beams among the members.
     """
-    if not slabs:
-        return {}
-    from shapely import STRtree
 
-    concrete = {beam.step_id for beam in beams}
-    plans, webs = [_polygon(slab.rings) for slab in slabs], webs_of(members, concrete)
-    slab_tree, web_tree = STRtree(plans), STRtree([web.plan for web in webs])
-    found: dict[str, Meeting] = {}
-    for beam in beams:
-        if not beam.runs or beam.axis is None or abs(beam.axis.x[2]) > HORIZONTAL:
-            continue
-        rows = sorted(slab_tree.query(_footprint(beam, beam.axis).buffer(TOUCHING)).tolist())
-        near = {i for row in rows for i in web_tree.query(plans[row].buffer(TOUCHING)).tolist()}
-        others = [webs[i] for i in sorted(near) if webs[i].step != beam.step_id]
-        around = _Around(beam, beam.axis, others, concrete)
-        meeting = around.meeting([(slabs[row], plans[row]) for row in rows])
-        if meeting.flanges or meeting.doubts:
-            found[beam.key] = meeting
+    def __init__(
+        self, beams: Sequence[Beam], slabs: Sequence[Slab], members: Sequence[Member]
+    ) -> None:
+        self._slabs, self._members = slabs, members
+        self._concrete = {beam.step_id for beam in beams}
+        self._level = [
+            one for one in beams if one.runs and one.axis and abs(one.axis.x[2]) <= HORIZONTAL
+        ]
+        self._webs: dict[int, list[Web]] = {}
+
+    def names_near(self, beam: Beam) -> tuple[str, ...]:
+        """Names of the slabs whose boxes touch a beam."""
+        return self._named.get(beam.key, ())
+
+    @cached_property
+    def _named(self) -> dict[str, tuple[str, ...]]:
+        slabs = [one for one in self._members if kind_of(one.ifc_class) == "IfcSlab"]
+        plates = [(web.ring,) for web in map(web_of, slabs)]
+        heights = [(web.low, web.high) for web in map(web_of, slabs)]
+        return {
+            key: tuple(dict.fromkeys(_called(slabs[row]) for row in rows))
+            for key, rows in _near(self._level, plates, heights).items()
+        }
+
+    @cached_property
+    def _near(self) -> dict[str, list[int]]:
+        heights = [(slab.bottom, slab.top) for slab in self._slabs]
+        return _near(self._level, [slab.rings for slab in self._slabs], heights)
+
+    def meeting(self, beam: Beam) -> Meeting:
+        """What the slabs may be to a beam that they meet."""
+        rows = self._near.get(beam.key, ())
+        if not rows or beam.axis is None:
+            return NO_MEETING
+        others = {web.step: web for row in rows for web in self._webs_beside(row)}
+        others.pop(beam.step_id, None)
+        around = _Around(beam, beam.axis, tuple(others.values()), self._concrete)
+        return around.meeting([self._slabs[row] for row in rows])
+
+    def _webs_beside(self, row: int) -> list[Web]:
+        """The members in plan over or beside a slab."""
+        if row not in self._webs:
+            tree, webs = self._tree
+            near = tree.query(_box_round(self._slabs[row].rings[0])).tolist()
+            self._webs[row] = [webs[i] for i in sorted(near)]
+        return self._webs[row]
+
+    @cached_property
+    def _tree(self) -> tuple[STRtree, list[Web]]:
+        from shapely import STRtree
+
+        webs = [web for web in webs_of(self._members, self._concrete) if web.ring]
+        return STRtree([_box_round(web.ring) for web in webs]), webs
+
+
+def _box_round(ring: Ring) -> BaseGeometry:
+    from shapely import box
+
+    xs, ys = zip(*ring, strict=True)
+    found: BaseGeometry = box(min(xs), min(ys), max(xs), max(ys))
     return found
 
 
-def _polygon(rings: Sequence[Ring]) -> Polygon:
-    from shapely import Polygon
-
-    return Polygon(rings[0], rings[1:])
+def _called(member: Member) -> str:
+    return f"{member.name or member.guid} ({member.ifc_class})"
 
 
-def _footprint(beam: Beam, axis: Axis) -> Polygon:
-    from shapely import Polygon
+def _near(
+    beams: Sequence[Beam], plans: Sequence[Plan], heights: Sequence[tuple[float, float]]
+) -> dict[str, list[int]]:
+    """Rows of the plans that touch each beam and share some height with it, by its key."""
+    found: dict[str, list[int]] = defaultdict(list)
+    if not (beams and plans):
+        return found
+    import shapely
 
-    ys = [y for run in beam.runs for ring in run.outline.rings for y, _ in ring]
-    (x0, y0, _), (x, y, _), (left_x, left_y, _) = axis.origin, axis.x, axis.y
-    ends = ((0.0, min(ys)), (beam.length, min(ys)), (beam.length, max(ys)), (0.0, max(ys)))
-    return Polygon([(x0 + a * x + b * left_x, y0 + a * y + b * left_y) for a, b in ends])
+    places, own = zip(*map(_place, beams), strict=True)
+    tree = shapely.STRtree([shapely.Polygon(plan[0], plan[1:]) for plan in plans])
+    pairs = tree.query(shapely.polygons(list(places)), predicate="intersects")
+    for beam, row in sorted(zip(*pairs.tolist(), strict=True)):
+        (soffit, top), (bottom, upper) = own[beam], heights[row]
+        if bottom <= top + TOUCHING and upper >= soffit:
+            found[beams[beam].key].append(row)
+    return found
+
+
+def _place(beam: Beam) -> tuple[list[tuple[float, float]], tuple[float, float]]:
+    """The rectangle that a beam covers in plan, a little grown, and its soffit and top."""
+    assert beam.axis is not None
+    points = [point for run in beam.runs for ring in run.outline.rings for point in ring]
+    ys, zs = [y for y, _ in points], [z for _, z in points]
+    (x0, y0, z0), (x, y, _), (left_x, left_y, _) = beam.axis.origin, beam.axis.x, beam.axis.y
+    right, left = min(ys) - TOUCHING, max(ys) + TOUCHING
+    ends = ((0.0, right), (beam.length, right), (beam.length, left), (0.0, left))
+    corners = [(x0 + a * x + b * left_x, y0 + a * y + b * left_y) for a, b in ends]
+    return corners, (z0 + min(zs), z0 + max(zs))
 
 
 @dataclass(frozen=True)
@@ -116,13 +183,13 @@ class _Around:
     concrete: set[int]
     """Step ids of the beams in scope"""
 
-    def meeting(self, slabs: Sequence[tuple[Slab, Polygon]]) -> Meeting:
+    def meeting(self, slabs: Sequence[Slab]) -> Meeting:
         """What the slabs may be to the beam."""
         strips: dict[_Strip, list[Reach]] = defaultdict(list)
         doubts: dict[str, None] = {}
-        for slab, plan in slabs:
+        for slab in slabs:
             for run in self.beam.runs:
-                for strip, reach in self._beside(run, slab, plan):
+                for strip, reach in self._beside(run, slab):
                     if doubt := slab.doubt or _doubt(run, slab.bottom - self.axis.origin[2]):
                         doubts[f"{slab.name}: {doubt}"] = None
                     else:
@@ -132,49 +199,49 @@ class _Around:
         ]
         return Meeting(tuple(flanges), tuple(doubts))
 
-    def _beside(self, run: Run, slab: Slab, plan: Polygon) -> Iterator[tuple[_Strip, Reach]]:
+    def _beside(self, run: Run, slab: Slab) -> Iterator[tuple[_Strip, Reach]]:
         """What of a slab lies beside a run of the beam, and what of it on top."""
         base, (_, low, _, high) = self.axis.origin[2], figure_of(run.outline).bounds
         bottom, top = slab.bottom - base, slab.top - base
         if bottom >= low - TOUCHING and min(top, high) - bottom >= LEAST:
-            yield from self._along(run, slab, plan, (bottom, min(top, high)), on_top=False)
+            yield from self._along(run, slab, (bottom, min(top, high)), on_top=False)
         thickness = top - max(bottom, high)
         if low < bottom <= high + TOUCHING and thickness >= LEAST:
-            yield from self._along(run, slab, plan, (high, high + thickness), on_top=True)
+            yield from self._along(run, slab, (high, high + thickness), on_top=True)
 
     def _along(
-        self, run: Run, slab: Slab, plan: Polygon, heights: tuple[float, float], *, on_top: bool
+        self, run: Run, slab: Slab, heights: tuple[float, float], *, on_top: bool
     ) -> Iterator[tuple[_Strip, Reach]]:
         _, (right, left) = narrowest(figure_of(run.outline))
+        middle = (right + left) / 2.0
         for outward in (1.0, -1.0):
-            face, back = _faces(run, heights, outward, on_top=on_top)
-            side = (
-                Side(face, back, back + 1.0, 0.0)
-                if on_top
-                else Side(face, face - TOUCHING, face + TOUCHING, LEAST)
-            )
+            face = _face(run, heights, outward, on_top=on_top)
+            begin = outward * middle if on_top else face - TOUCHING
+            latest = begin + LAP if on_top else face + TOUCHING
+            side = Side(face, begin, latest, 0.0 if on_top else LEAST)
             webs = [
-                (self._local(web.plan, outward), web.name)
+                (self._local((web.ring,), outward), web.name)
                 for web in self.others
                 if web.runs_with(self.axis)
                 and web.high > slab.bottom - TOUCHING
                 and web.low < slab.top - TOUCHING
             ]
-            level = round(heights[0], 1), round(heights[1], 1)
-            strip = _Strip(outward, *level, on_top, face, (right + left) / 2.0)
-            local = self._local(plan, outward)
+            low, high = round(heights[0], 1), round(heights[1], 1)
+            strip = _Strip(outward, low, high, on_top, face, middle)
+            local = self._local(slab.rings, outward)
             for reach in reaches(slab, local, webs, side, run.start, run.end):
                 yield strip, reach
 
-    def _local(self, plan: Polygon, outward: float) -> Polygon:
+    def _local(self, rings: Sequence[Ring], outward: float) -> Plan:
         """A plan in the axes of the beam, y to its left, or to its right for -1."""
-        from shapely.affinity import affine_transform
-
         (x0, y0, _), (x, y, _) = self.axis.origin, self.axis.x
-        across = outward * self.axis.y[0], outward * self.axis.y[1]
-        back = -(x * x0 + y * y0), -(across[0] * x0 + across[1] * y0)
-        moved: Polygon = affine_transform(plan, [x, y, *across, *back])
-        return moved
+        across, along = outward * self.axis.y[0], outward * self.axis.y[1]
+        return tuple(
+            tuple(
+                ((a - x0) * x + (b - y0) * y, (a - x0) * across + (b - y0) * along) for a, b in ring
+            )
+            for ring in rings
+        )
 
     def _flanges(self, strip: _Strip, found: Sequence[Reach]) -> Iterator[Flange]:
         """The boxes of slab along one side at one level."""
@@ -198,11 +265,11 @@ class _Around:
                 on_top=strip.on_top,
             )
 
-    def _framing(self, strip: _Strip) -> list[Polygon]:
+    def _framing(self, strip: _Strip) -> list[Plan]:
         """Plans of concrete beams across this one that fill the depth of the slab."""
         base = self.axis.origin[2]
         return [
-            self._local(web.plan, strip.outward)
+            self._local((web.ring,), strip.outward)
             for web in self.others
             if web.step in self.concrete
             and not web.runs_with(self.axis)
@@ -219,14 +286,19 @@ def _doubt(run: Run, bottom: float) -> str:
     return LOWER_HALF if bottom < (low + high) / 2.0 else ""
 
 
-def _faces(
-    run: Run, heights: tuple[float, float], outward: float, *, on_top: bool
-) -> tuple[float, float]:
-    """y of a side of the beam at the level of a slab and of the other side, outward positive."""
+def _face(run: Run, heights: tuple[float, float], outward: float, *, on_top: bool) -> float:
+    """y of a side of the beam at the level of a slab, outward positive."""
+    _, _, _, high = figure_of(run.outline).bounds
+    right, left = _sides_between(run.outline, *((high - 1.0, high) if on_top else heights))
+    return left if outward > 0.0 else -right
+
+
+@lru_cache(maxsize=4096)
+def _sides_between(outline: Outline, low: float, high: float) -> tuple[float, float]:
+    """How far an outline reaches to the right and to the left between two heights."""
     from shapely import box
 
-    figure = figure_of(run.outline)
-    right, _, left, high = figure.bounds
-    low, top = (high - 1.0, high) if on_top else heights
-    right, _, left, _ = figure.intersection(box(right - 1.0, low, left + 1.0, top)).bounds
-    return (left, right) if outward > 0.0 else (-right, -left)
+    figure = figure_of(outline)
+    right, _, left, _ = figure.bounds
+    right, _, left, _ = figure.intersection(box(right - 1.0, low, left + 1.0, high)).bounds
+    return right, left

@@ -5,12 +5,12 @@ from __future__ import annotations
 from collections.abc import Iterator, Sequence
 from dataclasses import dataclass, replace
 from itertools import pairwise
-from typing import TYPE_CHECKING
 
-from ifccheck.beam import Slab
+from ifccheck.beam import Ring, Slab
 
-if TYPE_CHECKING:
-    from shapely import Polygon
+Plan = tuple[Ring, ...]
+"""Rings in the axes of a beam, x along it and y outward from the side that is looked at; what lies
+in an odd number of them is covered"""
 
 STEP = 0.5
 """How far beside a corner of the plan the reach is measured [mm]"""
@@ -19,7 +19,7 @@ FAR = 1e6
 SAME = 1.0
 """Reaches that differ by less are one, and stretches with a lesser gap are neighbours [mm]"""
 
-Webs = Sequence[tuple["Polygon", str]]
+Webs = Sequence[tuple[Plan, str]]
 """Plans of the next webs, with their names"""
 
 
@@ -50,7 +50,7 @@ class Reach:
 
 
 def reaches(
-    slab: Slab, plan: Polygon, webs: Webs, side: Side, start: float, end: float
+    slab: Slab, plan: Plan, webs: Webs, side: Side, start: float, end: float
 ) -> list[Reach]:
     """How far a slab reaches out, and no farther than half the clear distance to the next web.
 
@@ -59,7 +59,7 @@ def reaches(
     slab
         The slab.
     plan, webs
-        Plans of it and of others in the beam's axes, y outward from the side that is looked at.
+        Plans of it and of others.
     side
         Where the beam's side is.
     start, end
@@ -79,33 +79,38 @@ def reaches(
     return joined(found)
 
 
-def _corners(plans: Sequence[Polygon], start: float, end: float) -> list[float]:
+def _corners(plans: Sequence[Plan], start: float, end: float) -> list[float]:
     places = {start, end}
     for plan in plans:
-        for ring in (plan.exterior, *plan.interiors):
-            places |= {round(x, 6) for x, _ in ring.coords if start < x < end}
+        for ring in plan:
+            places |= {round(x, 6) for x, _ in ring if start < x < end}
     return sorted(places)
 
 
-def _reach_at(plan: Polygon, webs: Webs, side: Side, x: float) -> tuple[float, str]:
-    covered = _covered(plan, x, side.inner)
+def _reach_at(plan: Plan, webs: Webs, side: Side, x: float) -> tuple[float, str]:
+    covered = covered_from(plan, x, side.inner)
     if covered is None or covered[0] > side.latest:
         return -FAR, ""
     found = covered[1] - side.face, ""
     for other, name in webs:
-        beyond = _covered(other, x, side.face + STEP)
+        beyond = covered_from(other, x, side.face + STEP)
         if beyond is not None:
             found = min(found, ((beyond[0] - side.face) / 2.0, name))
     return found
 
 
-def _covered(plan: Polygon, x: float, inner: float) -> tuple[float, float] | None:
+def covered_from(plan: Plan, x: float, inner: float) -> tuple[float, float] | None:
     """The first stretch that a plan covers on a line outward from a place; None without any."""
-    from shapely import LineString
-
-    cut = plan.intersection(LineString([(x, inner), (x, FAR)]))
-    pieces = [piece for piece in getattr(cut, "geoms", [cut]) if piece.length > 0.0]
-    return min(((piece.bounds[1], piece.bounds[3]) for piece in pieces), default=None)
+    ys = sorted(
+        y0 + (y1 - y0) * (x - x0) / (x1 - x0)
+        for ring in plan
+        for (x0, y0), (x1, y1) in pairwise((*ring, ring[0]))
+        if (x0 <= x) != (x1 <= x)
+    )
+    for low, high in zip(ys[::2], ys[1::2], strict=True):
+        if high > inner:
+            return max(low, inner), high
+    return None
 
 
 def joined(found: Sequence[Reach]) -> list[Reach]:
@@ -136,7 +141,7 @@ def apart(found: Sequence[Reach]) -> list[Reach]:
     return joined(pieces)
 
 
-def bridged(found: Sequence[Reach], framing: Sequence[Polygon], face: float) -> list[Reach]:
+def bridged(found: Sequence[Reach], framing: Sequence[Plan], face: float) -> list[Reach]:
     """The reaches with the gaps filled that beams leave which frame in between two panels.
 
     Parameters
@@ -144,7 +149,7 @@ def bridged(found: Sequence[Reach], framing: Sequence[Polygon], face: float) -> 
     found
         Sorted by their start, none over another.
     framing
-        Plans of beams that fill the depth of the slab, in the beam's axes, y outward.
+        Plans of beams that fill the depth of the slab; they are convex.
     face
         y of the beam's side.
     """
@@ -161,11 +166,15 @@ def _reach(one: Reach) -> float:
     return one.reach
 
 
-def _is_filled(start: float, end: float, framing: Sequence[Polygon], face: float) -> bool:
-    from shapely import LineString
+def _is_filled(start: float, end: float, framing: Sequence[Plan], face: float) -> bool:
+    """Whether one of the beams covers the gap beside the face from end to end."""
+    beside = face + 2.0 * STEP
 
-    gap = LineString([(start + STEP, face + 2.0 * STEP), (end - STEP, face + 2.0 * STEP)])
-    return any(plan.buffer(2.0 * STEP).covers(gap) for plan in framing)
+    def covers(plan: Plan, x: float) -> bool:
+        found = covered_from(plan, x, beside)
+        return found is not None and found[0] <= beside
+
+    return any(covers(plan, start + STEP) and covers(plan, end - STEP) for plan in framing)
 
 
 def spread(found: Sequence[Reach], length: float, farthest: float) -> list[Reach]:

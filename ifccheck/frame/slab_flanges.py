@@ -14,6 +14,8 @@ from ifccheck.frame.net_outlines import with_flanges
 from ifccheck.units import show
 
 STAGE = "flanges"
+NAMED = 3
+"""Slabs that a remark names"""
 Wanted = Literal["none", "level", "on top"]
 """What the brief lets count: nothing, slab that is level with the beam, also what lies on it"""
 
@@ -26,7 +28,10 @@ WEIGHT = "slab that counts as a flange is not in the self weight: its weight mus
 class Asked:
     """What is asked of the slabs that meet a beam."""
 
-    meeting: Meeting | None
+    near: tuple[str, ...]
+    """Names of the slabs that touch it and might count"""
+    meeting: Meeting
+    """Looked up only where some slab is wanted"""
     wanted: Wanted
     source: str
     """Where the brief says so"""
@@ -68,11 +73,9 @@ def counted(beam: Beam, asked: Asked, loads: Sequence[Load]) -> Counted:
     Never for a precast beam, nor where the brief does not ask for it, nor slab of concrete that
     is known to be weaker than the beam's.
     """
-    meeting = asked.meeting
-    if meeting is None:
-        return Counted()
     if why := _refused(beam, asked):
         return Counted(remarks=(Remark(beam.key, STAGE, why, "note"),))
+    meeting = asked.meeting
     level = [one for one in meeting.flanges if asked.wanted == "on top" or not one.on_top]
     flanges = tuple(one for one in level if not _weaker(one, asked.strength))
     texts = [*_not_counted(meeting, asked, level), *_told(flanges, asked)]
@@ -89,10 +92,10 @@ def _weaker(flange: Flange, strength: float) -> bool:
 
 def _refused(beam: Beam, asked: Asked) -> str:
     """Why no slab counts at all."""
-    meeting = asked.meeting
-    if meeting is None or not meeting.flanges or (asked.wanted != "none" and not beam.precast):
+    if not asked.near or (asked.wanted != "none" and not beam.precast):
         return ""
-    slabs = ", ".join(dict.fromkeys(one.origin.partition(", to ")[0] for one in meeting.flanges))
+    more = f" and {len(asked.near) - NAMED} more" if len(asked.near) > NAMED else ""
+    slabs = f"{', '.join(asked.near[:NAMED])}{more}"
     if beam.precast:
         return f"slab is never counted as a flange of a precast beam ({beam.precast}): {slabs}"
     return f"slab is not counted as a flange: {slabs} {ASKED}"

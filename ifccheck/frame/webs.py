@@ -4,13 +4,10 @@ from __future__ import annotations
 
 from collections.abc import Collection, Sequence
 from itertools import product
-from typing import TYPE_CHECKING, NamedTuple
+from typing import NamedTuple
 
-from ifccheck.beam import Axis, Box, Member
+from ifccheck.beam import Axis, Box, Member, Ring
 from ifccheck.frame.contacts import kind_of
-
-if TYPE_CHECKING:
-    from shapely import Polygon
 
 WEBS = ("IfcBeam", "IfcWall", "IfcMember")
 """Members that may carry a slab as the beam does"""
@@ -18,12 +15,15 @@ LEVEL = 0.5
 """Greatest z of the unit vector of what lies rather than stands"""
 SAME_WAY = 0.5
 """Least cosine between a beam and another that is the next web"""
+UPRIGHT = 1e-6
+"""How far from the vertical an axis may be whose box is a rectangle in plan"""
 
 
 class Web(NamedTuple):
     """A member in plan."""
 
-    plan: Polygon
+    ring: Ring
+    """Convex"""
     low: float
     high: float
     way: tuple[float, float]
@@ -37,45 +37,55 @@ class Web(NamedTuple):
 
 def webs_of(members: Sequence[Member], beams: Collection[int]) -> list[Web]:
     """The members that may carry a slab: by their class, or as beams in scope by step id."""
-    return [_web(one) for one in members if one.step_id in beams or _may_carry(one)]
+    return [web_of(one) for one in members if one.step_id in beams or _may_carry(one)]
 
 
 def _may_carry(member: Member) -> bool:
     kind, box = kind_of(member.ifc_class), member.box
+    if kind not in WEBS:
+        return False
     longest = box.axes[max(range(3), key=lambda row: box.half[row])]
-    return kind == "IfcWall" or (kind in WEBS and abs(longest[2]) < LEVEL)
+    return kind == "IfcWall" or abs(longest[2]) < LEVEL
 
 
-def _web(member: Member) -> Web:
-    from shapely import MultiPoint, Polygon
-
-    corners = _corners(member.box)
-    heights = [z for _, _, z in corners]
-    plan = MultiPoint([(x, y) for x, y, _ in corners]).convex_hull
+def web_of(member: Member) -> Web:
+    """A member in plan by its box."""
+    box = member.box
+    reach = sum(abs(axis[2]) * half for axis, half in zip(box.axes, box.half, strict=True))
+    lying = [row for row in range(3) if abs(box.axes[row][2]) < LEVEL]
+    x, y, _ = box.axes[max(lying, key=lambda row: box.half[row])]
     return Web(
-        plan=plan if isinstance(plan, Polygon) else Polygon(),
-        low=min(heights),
-        high=max(heights),
-        way=_way(member.box),
+        ring=_ring(box),
+        low=box.centre[2] - reach,
+        high=box.centre[2] + reach,
+        way=(x, y),
         name=f"{member.name or member.guid} ({member.ifc_class})",
         step=member.step_id,
     )
 
 
-def _corners(box: Box) -> list[tuple[float, float, float]]:
-    found = []
+def _ring(box: Box) -> Ring:
+    """What a box covers in plan."""
+    flat = [row for row in range(3) if abs(box.axes[row][2]) < UPRIGHT]
+    x, y, _ = box.centre
+    if len(flat) != 2:
+        return _hull(box)
+    (ax, ay, _), (bx, by, _) = (box.axes[row] for row in flat)
+    a, b = (box.half[row] for row in flat)
+    signs = ((-a, -b), (a, -b), (a, b), (-a, b))
+    return tuple((x + s * ax + t * bx, y + s * ay + t * by) for s, t in signs)
+
+
+def _hull(box: Box) -> Ring:
+    from shapely import MultiPoint, Polygon
+
+    places = []
     for signs in product((-1.0, 1.0), repeat=3):
         steps = [sign * half for sign, half in zip(signs, box.half, strict=True)]
-        x, y, z = (
-            box.centre[k] + sum(s * a[k] for s, a in zip(steps, box.axes, strict=True))
-            for k in range(3)
+        x, y = (
+            box.centre[k] + sum(s * axis[k] for s, axis in zip(steps, box.axes, strict=True))
+            for k in range(2)
         )
-        found.append((x, y, z))
-    return found
-
-
-def _way(box: Box) -> tuple[float, float]:
-    """The longest of the axes that lie."""
-    lying = [row for row in range(3) if abs(box.axes[row][2]) < LEVEL]
-    x, y, _ = box.axes[max(lying, key=lambda row: box.half[row])]
-    return x, y
+        places.append((x, y))
+    hull = MultiPoint(places).convex_hull
+    return tuple((x, y) for x, y in hull.exterior.coords[:-1]) if isinstance(hull, Polygon) else ()

@@ -37,7 +37,8 @@ def read_model(
 
     ``mapping`` names the properties that hold reinforcement: field = "Set.Property".
     ``statements`` of the same file let the plainest bars be read many at once. ``choice`` is what
-    the brief takes in beside the beams by class, and what it leaves out.
+    the brief takes in beside the beams by class, and what it leaves out; slabs are read only where
+    it asks for them.
     Raises ModelError where the model has no unit of length to measure its beams by, or breaks
     its schema where that is not the matter of a single beam.
     """
@@ -92,7 +93,7 @@ def _read(
         storeys=storeys.all,
         remarks=(*opened.remarks, *_repeats(own), *reader.remarks, *members.remarks),
         unmeasured=members.unmeasured,
-        slabs=SlabReader(context, profiles).read() if beams else (),
+        slabs=SlabReader(context, profiles).read() if beams and choice.slabs else (),
     )
 
 

@@ -23,19 +23,27 @@ SAID = "the brief says so"
 
 @dataclass(frozen=True, slots=True)
 class Choice:
-    """The members of one model that the brief takes in or leaves out, by STEP id."""
+    """What the brief chooses to have read of one model; members by STEP id."""
 
     also: frozenset[int] = frozenset()
     left_out: Mapping[int, str] = field(default_factory=dict)
     """With the query that leaves each out"""
     reached: Mapping[str, int] = field(default_factory=dict)
     """How many members each query reaches, by its place in the brief"""
+    slabs: bool = False
+    """Slabs are wanted, which may count as flanges"""
 
 
 NO_CHOICE = Choice()
 
 
-def choose(opened: OpenedModel, also: Mapping[str, str], leave_out: Mapping[str, str]) -> Choice:
+def choose(
+    opened: OpenedModel,
+    also: Mapping[str, str],
+    leave_out: Mapping[str, str],
+    *,
+    slabs: bool = False,
+) -> Choice:
     """Answer the queries of the brief, each given by its place.
 
     Raises BriefError where one cannot be understood or answered.
@@ -46,6 +54,7 @@ def choose(opened: OpenedModel, also: Mapping[str, str], leave_out: Mapping[str,
         also=frozenset(step_id for found in taken.values() for step_id in found),
         left_out={step_id: leave_out[place] for place, found in left.items() for step_id in found},
         reached={place: len(found) for place, found in (taken | left).items()},
+        slabs=slabs,
     )
 
 

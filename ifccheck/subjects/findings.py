@@ -8,7 +8,7 @@ from dataclasses import dataclass, field
 from ifccheck.beam import Contact, Given, Reason, Remark, Support, Unmeasured
 from ifccheck.brief.model import Brief
 from ifccheck.brief.statements import BeamStatement, MaterialStatement
-from ifccheck.frame.flanges import Meeting
+from ifccheck.frame.flanges import Slabs
 from ifccheck.frame.openings import Net
 from ifccheck.standards import Standard
 
@@ -57,5 +57,4 @@ class Sources:
     """By the brief [N/mm3]"""
     crane_cases: Set[str]
     permanent_cases: Set[str]
-    slabs: Mapping[str, Meeting]
-    """The slabs that meet each beam"""
+    slabs: Slabs

@@ -27,7 +27,7 @@ from ifccheck.brief.statements import (
 )
 from ifccheck.brief.supports import resolve_supports, stated_ends
 from ifccheck.frame.carrying import contacts_of, pressed_ends
-from ifccheck.frame.flanges import meetings
+from ifccheck.frame.flanges import NO_MEETING, Slabs
 from ifccheck.frame.openings import Net, net_of
 from ifccheck.frame.reactions import loaded_from_side, unknown_reactions
 from ifccheck.frame.slab_flanges import Asked, counted
@@ -70,7 +70,7 @@ def gather(model: Model, brief: Brief, matches: Matches, standard: Standard) -> 
         defaults=default_materials(brief),
         supports=supports,
         support_remarks=_by_beam(remarks),
-        slabs=meetings(model.beams, model.slabs, model.members),
+        slabs=Slabs(model.beams, model.slabs, model.members),
         unit_weight=Given(brief.basis.concrete_unit_weight, "brief, basis.concrete_unit_weight"),
         crane_cases={case.name for case in brief.cases if case.nature == "crane"},
         permanent_cases={case.name for case in brief.cases if case.nature == "permanent"},
@@ -124,7 +124,7 @@ def _one(
     _judge_loads(beam, sources, statement, standing, loads, findings)
     net = Net()
     if standing and steel:
-        slab = counted(beam, _asked(beam.key, sources, statement, concrete), loads)
+        slab = counted(beam, _asked(beam, sources, statement, concrete), loads)
         net = net_of(beam, standing, loads, steel, slab)
     findings.take(net)
     if standing is None or steel is None or any(reason.blocking for reason in findings.reasons):
@@ -173,11 +173,12 @@ def _judge_standing(
         findings.remarks += standing.remarks
 
 
-def _asked(key: str, sources: Sources, statement: BeamStatement, concrete: Concrete) -> Asked:
+def _asked(beam: Beam, sources: Sources, statement: BeamStatement, concrete: Concrete) -> Asked:
     """What the brief lets count of the slabs that meet a beam."""
     wanted, source = slab_flange(sources.brief, statement)
     return Asked(
-        meeting=sources.slabs.get(key),
+        near=sources.slabs.names_near(beam),
+        meeting=NO_MEETING if wanted == "none" else sources.slabs.meeting(beam),
         wanted=wanted,
         source=source,
         strength=concrete.strength.value,
