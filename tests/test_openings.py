@@ -364,6 +364,17 @@ def test_openings_near_one_another_are_judged_together() -> None:
     assert resistance(batch, 2070.0, 2300.0, "Shear") == pytest.approx(shear_by_hand(DV - 140.0))
 
 
+def test_recesses_side_by_side_narrow_the_web_together() -> None:
+    """40 mm from either side are 80 of 300 mm, more than a quarter; one after the other, 40."""
+    made = subject(bottom=0, top=0, loads=(line("floor", 2.0),))
+    bare = replace(made, stirrups=(), stirrup_yield=())
+    right = hole(2000.0, 500.0, 200.0, 200.0, -150.0, -110.0)
+    beside = hole(2200.0, 500.0, 200.0, 200.0, 110.0, 150.0)
+    assert "it takes 80.0 mm of the web" in texts(with_openings(bare, right, beside))
+    after = hole(2600.0, 500.0, 200.0, 200.0, 110.0, 150.0)
+    assert not with_openings(bare, right, after).reasons
+
+
 @pytest.mark.parametrize("gap", [0.0, 299.0, 301.0])
 def test_a_concentrated_load_near_an_opening(gap: float) -> None:
     load = point("press", 5e3, 2150.0 + gap)

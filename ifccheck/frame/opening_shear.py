@@ -23,11 +23,15 @@ from __future__ import annotations
 import math
 from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
+from typing import TYPE_CHECKING
 
 from ifccheck.beam import Beam, Load, Opening, Reason, Run, ShearLoss, Stirrups
-from ifccheck.frame.figures import figure_of, levels_of, narrowest
+from ifccheck.frame.figures import figure_of, levels_of, narrowest, parts_of
 from ifccheck.frame.net_outlines import NOTHING, place_of, without
 from ifccheck.units import show
+
+if TYPE_CHECKING:
+    from shapely.geometry.base import BaseGeometry
 
 SMALL = 0.25
 """Greatest height and length of a small opening over the depth, and greatest share of the width
@@ -127,16 +131,18 @@ def judged_openings(beam: Beam, around: Surroundings) -> list[Judged]:
 def _measured(beam: Beam, opening: Opening) -> Measured:
     """What it does where that is worst."""
     found = [
-        _measured_in(run, opening)
+        _measured_in(run, opening, beam.openings)
         for run in beam.runs
         if run.start < opening.end and run.end > opening.start
     ]
     return max(found, key=lambda one: (one.height / one.depth, one.narrowed / one.web))
 
 
-def _measured_in(run: Run, opening: Opening) -> Measured:
+def _measured_in(run: Run, opening: Opening, openings: Sequence[Opening]) -> Measured:
+    """What an opening takes off a run; the web is narrowed by all that lie side by side."""
     whole = figure_of(run.outline)
     left = without(whole, [opening])
+    beside = [one for one in openings if one.start < opening.end and one.end > opening.start]
     (low, high), levels = (whole.bounds[1], whole.bounds[3]), levels_of(left)
     web, (right, leftmost) = narrowest(whole)
     covered = sum(top - bottom for bottom, top in levels)
@@ -147,10 +153,14 @@ def _measured_in(run: Run, opening: Opening) -> Measured:
         notch=levels[0][0] - low + high - levels[-1][1],
         chord=min(top - bottom for bottom, top in levels),
         web=web,
-        narrowed=max(web - narrowest(left)[0], 0.0),
+        narrowed=max(web - _least_width(without(whole, beside)), 0.0),
         within=right < opening.right - NOTHING and opening.left < leftmost - NOTHING,
         middle=(right + leftmost) / 2.0,
     )
+
+
+def _least_width(figure: BaseGeometry) -> float:
+    return narrowest(figure)[0] if parts_of(figure) else 0.0
 
 
 def _faults(one: Measured, everyone: Sequence[Measured], around: Surroundings) -> Iterator[str]:
