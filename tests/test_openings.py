@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import math
+import random
 from dataclasses import replace
 from itertools import pairwise
 
@@ -538,3 +539,45 @@ def test_shapely_sees_the_void_of_an_outline() -> None:
     outline = Outline((*subject().beam.runs[0].outline.rings, ring))
     assert figure_of(outline).area == pytest.approx(300 * 600 - 200 * 200)
     assert isinstance(figure_of(outline), Polygon)
+
+
+def _random_beam(rng: random.Random, key: str) -> tuple[Subject, tuple[Opening, ...]]:
+    ends = rng.choice([("pinned", "pinned"), ("fixed", "free"), ("fixed", "fixed")])
+    loads = (
+        line("floor", rng.choice([1.0, 20.0, -3.0]), key),
+        point("press", rng.choice([1e3, 8e4]), rng.uniform(0.0, LENGTH), key),
+    )
+    made = subject(
+        key, bottom=rng.choice([0, 3, 5]), top=rng.choice([0, 2]), ends=ends, loads=loads,
+        legs=rng.choice([2, 2, None, 4]),
+    )  # fmt: skip
+    openings = []
+    for _ in range(rng.randint(1, 4)):
+        x, right, bottom = rng.uniform(0, 5900), rng.uniform(-700, 500), rng.uniform(-20, 580)
+        end = min(LENGTH, x + rng.choice([20, 100, 150, 800]))
+        left, top = right + rng.choice([30, 200, 1200]), bottom + rng.choice([30, 100, 150, 400])
+        openings.append(Opening(x, end, right, left, bottom, top, "other"))
+    return made, tuple(openings)
+
+
+@pytest.mark.parametrize("method", ["general", "simplified"])
+def test_no_random_opening_makes_a_beam_better_or_the_program_fail(method: str) -> None:
+    """Adequate with openings only where no reason speaks against it and it is so without them."""
+    rng = random.Random(5)
+    pairs = []
+    for number in range(120):
+        made, openings = _random_beam(rng, f"b{number}")
+        outline = rng.choice([made.beam.runs[0].outline, TEE])
+        opened = with_openings(made, *openings, outline=outline)
+        if not any(reason.blocking for reason in opened.reasons):
+            pairs.append((replace(opened, body=None, reasons=()), opened))
+    assert len(pairs) > 60
+    solid = rated(*(pair[0] for pair in pairs), method=method)[1]
+    found = rated(*(pair[1] for pair in pairs), method=method)[1]
+    adequate = 0
+    for (_, opened), whole, rating in zip(pairs, solid, found, strict=True):
+        if rating.verdict is Verdict.ADEQUATE:
+            adequate += 1
+            assert whole.verdict is Verdict.ADEQUATE
+            assert not opened.reasons
+    assert adequate > 3
