@@ -6,7 +6,7 @@ from collections import Counter
 from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import replace
 
-from ifccheck.beam import Beam, Box, Model, OutOfScope, Reinforcement, Remark
+from ifccheck.beam import Beam, Box, Model, Reinforcement, Remark
 from ifccheck.errors import ModelError
 from ifccheck.ifc.beams import BeamReader, Identity
 from ifccheck.ifc.context import BeamFrame, Context, make_context
@@ -18,24 +18,31 @@ from ifccheck.ifc.plain_bodies import PlainBodies
 from ifccheck.ifc.products import Product, read_products
 from ifccheck.ifc.profiles import Profiles
 from ifccheck.ifc.reinforcement import read_reinforcement
+from ifccheck.ifc.scoping import NO_CHOICE, Choice, candidates, parted
+from ifccheck.ifc.slabs import SlabReader
 from ifccheck.ifc.step_table import StepTable
 from ifccheck.ifc.storeys import Storeys
 
 STAGE = "reading"
+BEAMS = ("IfcBeam",)
 
 
 def read_model(
-    opened: OpenedModel, mapping: Mapping[str, str], statements: StepTable | None = None
+    opened: OpenedModel,
+    mapping: Mapping[str, str],
+    statements: StepTable | None = None,
+    choice: Choice = NO_CHOICE,
 ) -> Model:
     """Return all that a model says of its beams.
 
     ``mapping`` names the properties that hold reinforcement: field = "Set.Property".
-    ``statements`` of the same file let the plainest bars be read many at once.
+    ``statements`` of the same file let the plainest bars be read many at once. ``choice`` is what
+    the brief takes in beside the beams by class, and what it leaves out.
     Raises ModelError where the model has no unit of length to measure its beams by, or breaks
     its schema where that is not the matter of a single beam.
     """
     try:
-        return _read(opened, mapping, statements)
+        return _read(opened, mapping, statements, choice)
     except ILL_TYPED as error:
         raise ModelError(
             f"{opened.file_name}: an instance does not hold what its class asks ({error}); "
@@ -43,10 +50,16 @@ def read_model(
         ) from error
 
 
-def _read(opened: OpenedModel, mapping: Mapping[str, str], statements: StepTable | None) -> Model:
+def _read(
+    opened: OpenedModel,
+    mapping: Mapping[str, str],
+    statements: StepTable | None,
+    choice: Choice,
+) -> Model:
     context = make_context(opened.file, opened.schema, statements)
     products = read_products(context, members_of(opened.file))
-    own = [one for one in products if context.classes.is_any(one.ifc_class, ("IfcBeam",))]
+    beams_by_class = [one for one in products if context.classes.is_any(one.ifc_class, BEAMS)]
+    own = candidates(context, products, beams_by_class, choice)
     if own and "length" not in context.units.declared:
         raise ModelError(
             f"{opened.file_name}: declares no unit of length, so no beam can be measured; "
@@ -57,7 +70,7 @@ def _read(opened: OpenedModel, mapping: Mapping[str, str], statements: StepTable
     reader = BeamReader(context, profiles, storeys, opened.name, bodies)
     context.properties.find(product.step_id for product in own)
     beams: list[Beam] = []
-    left_out: list[OutOfScope] = []
+    own, left_out = parted(context, storeys, own, choice)
     known: dict[int, Box] = {}
     for product, identity in _identified(own):
         found = reader.read(product, identity)
@@ -79,6 +92,7 @@ def _read(opened: OpenedModel, mapping: Mapping[str, str], statements: StepTable
         storeys=storeys.all,
         remarks=(*opened.remarks, *_repeats(own), *reader.remarks, *members.remarks),
         unmeasured=members.unmeasured,
+        slabs=SlabReader(context, profiles).read() if beams else (),
     )
 
 

@@ -16,7 +16,8 @@ nothing); factor ``rated``, ``not limited`` or ``not rated``.
     beams         key, global_id, ordinal, mark, name, tag, type, storey, material, length,
                   span (start, end, supports), verdict, utilisation, governing (name of a limit
                   state), limit_states, rated_cases, reasons, remarks, basis, checked,
-                  not_checked
+                  not_checked; where there are any, openings (start, end along the axis; right,
+                  left across; bottom, top; shape; origin): the box round each
     out_of_scope  global_id, name, storey, reason, evidence
     assumptions   text, beams (empty: the whole run)
     remarks       beam, stage, kind, text
@@ -31,7 +32,7 @@ import json
 import math
 from typing import Any
 
-from ifccheck.beam import Beam, Combination, OutOfScope, Remark, Span, Support
+from ifccheck.beam import Beam, Combination, Opening, OutOfScope, Remark, Span, Support
 from ifccheck.publish.report import CaseSummary, Report
 from ifccheck.rating import BasisItem, LimitStateRating, Rating, SafeLoad
 from ifccheck.tables import factor_state, utilisation_state
@@ -140,6 +141,7 @@ def _beam(beam: Beam, report: Report) -> Data:
         "material": beam.material,
         "length": beam.length if beam.axis else None,
         "span": _span(span) if span else None,
+        **({"openings": [_opening(each) for each in beam.openings]} if beam.openings else {}),
         **_rating(rating),
     }
 
@@ -169,6 +171,19 @@ def _rating(rating: Rating) -> Data:
         "basis": [_basis(item) for item in rating.basis],
         "checked": list(rating.checked),
         "not_checked": list(rating.not_checked),
+    }
+
+
+def _opening(opening: Opening) -> Data:
+    return {
+        "start": opening.start,
+        "end": opening.end,
+        "right": opening.right,
+        "left": opening.left,
+        "bottom": opening.bottom,
+        "top": opening.top,
+        "shape": opening.shape,
+        "origin": opening.origin,
     }
 
 

@@ -231,7 +231,7 @@ def _both_sides(web: Web, demand: Demand, acts: Acting, cracked: Cracked) -> _Si
     the steel that suffices for that suffices, and nothing is said otherwise.
     """
     outside = cracked.beyond_strain | web.beyond_simplified
-    outside |= ~(web.simplified | (cracked.area > 0.0))
+    outside |= ~(web.simplified | (cracked.area > 0.0)) | np.isnan(web.shear_depth)
     stirrup_term = np.where(web.legs_unknown, 0.0, cracked.stirrup_term)
     cot_theta = np.where(outside, np.nan, cracked.cot_theta)
     shift = _shift(acts.own_shear, stirrup_term, cot_theta)

@@ -37,6 +37,8 @@ class Web:
     inside: Bools
     simplified: Bools
     shear_depth: Floats
+    shear_loss: Floats
+    """What openings have taken off it [mm]; nan where shear cannot be rated"""
     tension_area: Floats
     has_steel: Bools
     """The face holds tension steel, developed or not"""
@@ -75,6 +77,11 @@ class Web:
     """Shear that the upper and the lower chord put on the web for each unit of moment, by their
     inclination [1/mm] (N, 2); None where no chord is inclined"""
 
+    @property
+    def whole_depth(self) -> Floats:
+        """dv of the web without openings: cracks are spaced by it [mm] (N)"""
+        return self.shear_depth + self.shear_loss
+
     def take(self, rows: Ints | slice) -> Web:
         """The same at the given stations; rows may repeat."""
         arrays: dict[str, Any] = {f.name: getattr(self, f.name)[rows] for f in fields(self)[1:-1]}
@@ -98,6 +105,7 @@ def web(prepared: Prepared, *, top: bool) -> Web:
         inside=prepared.inside,
         simplified=around.simplified,
         shear_depth=face.shear_depth,
+        shear_loss=prepared.shear_loss,
         tension_area=face.tension_area,
         has_steel=face.tension_area_full > 0.0,
         critical_area=area,
@@ -130,7 +138,9 @@ def _chord_rates(prepared: Prepared, face: FaceState, *, top: bool) -> Floats | 
     steel = chords.steel_follows.astype(np.float64)
     upper = -chords.top_rise * (steel if top else 1.0)
     lower = chords.soffit_rise * (1.0 if top else steel)
-    rates: Floats = np.stack([upper, lower], axis=-1) / face.shear_depth[:, None]
+    rises = np.stack([upper, lower], axis=-1)
+    # a level chord adds nothing, also where an opening leaves no known depth
+    rates: Floats = np.where(rises == 0.0, 0.0, rises / face.shear_depth[:, None])
     return rates
 
 
@@ -158,7 +168,7 @@ def _cracks(prepared: Prepared, face: FaceState) -> dict[str, Any]:
         concrete_strength=prepared.concrete_strength, aggregate_size=prepared.aggregate_size
     )
     spacing = formulas.equivalent_crack_spacing(
-        shear_depth=face.shear_depth, aggregate_size=aggregate
+        shear_depth=face.shear_depth + prepared.shear_loss, aggregate_size=aggregate
     )
     return {"aggregate_size": aggregate, "crack_spacing": spacing}
 
