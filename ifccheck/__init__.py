@@ -29,10 +29,16 @@ def rate(models: str | Path | Sequence[str | Path], brief: str | Path) -> pd.Dat
     )
 
 
-def survey(model: str | Path, brief: str | Path | None = None) -> pd.DataFrame:
-    """Tell what a model holds; one row per beam, with what a rating of it would lack."""
-    from ifccheck import pipeline
+def survey(
+    models: str | Path | Sequence[str | Path], brief: str | Path | None = None
+) -> pd.DataFrame:
+    """Tell what one or more models hold; one row per beam, with what a rating of it would lack.
+
+    Nothing is written. Raises ``ifccheck.errors.IfccheckError`` with one line for people.
+    """
+    from ifccheck import surveying
     from ifccheck.tables import survey_frame
 
-    found = pipeline.survey(Path(model), Path(brief) if brief else None)
-    return survey_frame(found.model.beams, found.missing)
+    paths = [models] if isinstance(models, str | Path) else list(models)
+    found = surveying.survey([Path(path) for path in paths], Path(brief) if brief else None)
+    return survey_frame(each.survey for each in found)

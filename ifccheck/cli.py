@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import sys
-from collections.abc import Callable
+from collections.abc import Callable, Iterable
 from io import TextIOWrapper
 from pathlib import Path
 from typing import TYPE_CHECKING, Any
@@ -86,17 +86,50 @@ def rate(models: tuple[Path, ...], brief: Path, out: Path, only: tuple[str, ...]
 
 
 @main.command()
-@click.argument("model", type=FILE)
-@click.option("--brief", type=FILE, help="The engineer's brief, for its property mapping.")
-def survey(model: Path, brief: Path | None) -> None:
-    """Show what a model holds and what a rating would lack."""
-    from ifccheck import pipeline
-    from ifccheck.publish.terminal import survey_table
+@click.argument("models", nargs=-1, required=True, type=FILE, metavar="MODEL...")
+@click.option("--brief", type=FILE, help="The engineer's brief, where there is one already.")
+@click.option("--out", type=FILE, help="Folder for a page of each model, <model>-survey.html.")
+@click.option("--starter", type=FILE, help="A new file for a brief to start from (TOML).")
+def survey(
+    models: tuple[Path, ...], brief: Path | None, out: Path | None, starter: Path | None
+) -> None:
+    """Show what models hold and what a rating would lack.
 
+    Tells for each group of beams what was read, what is missing for a rating and what is
+    doubtful. No brief is needed yet: --starter writes one with the marks, storeys, materials and
+    property sets of the models, ready to fill in. With --brief, what the brief settles is not
+    missing. The exit status is 0 where the models could be read.
+    """
+    from ifccheck import surveying
+    from ifccheck.outputs import refuse_existing
+    from ifccheck.publish.terminal_survey import survey_text
+
+    inputs = [*models, *([brief] if brief else [])]
     with _progress() as say:
-        found = _guarded(lambda: pipeline.survey(model, brief, say))
+        if starter:
+            _guarded(lambda: refuse_existing(starter))  # before the models are read
+        found = _guarded(lambda: surveying.survey(models, brief, say))
+        written = _guarded(
+            lambda: surveying.publish(found, inputs, out=out, starter=starter, say=say)
+        )
     console = _console()
-    console.print(survey_table(found.model, found.missing, console))
+    for each in found:
+        console.print(survey_text(each.survey, console))
+    _tell_written(console, written)
+
+
+@main.command()
+@click.argument("file", type=FILE)
+def requirement(file: Path) -> None:
+    """Write to FILE what a modeller must give of a beam (IDS 1.0).
+
+    A file that exists already is left as it is. What survey says of the information requirement
+    is held against the same text.
+    """
+    from ifccheck import surveying
+
+    _guarded(lambda: surveying.write_requirement(file))
+    _tell_written(_console(), [file])
 
 
 @main.command()
@@ -131,6 +164,13 @@ def _console() -> Console:
     if isinstance(sys.stdout, TextIOWrapper):
         sys.stdout.reconfigure(errors="replace")  # a name that the terminal cannot show
     return Console(markup=False, highlight=False, emoji=False, soft_wrap=False)
+
+
+def _tell_written(console: Console, paths: Iterable[Path]) -> None:
+    from ifccheck.publish.words import printable
+
+    for path in paths:
+        console.print(f"  {printable(str(path))}", soft_wrap=True)
 
 
 class _Silent:

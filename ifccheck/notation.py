@@ -7,12 +7,13 @@ from __future__ import annotations
 
 import math
 import re
+from collections.abc import Iterable
 from dataclasses import dataclass
 from difflib import get_close_matches
 from functools import cache
 from typing import Literal
 
-from ifccheck.beam import BarGroup, StirrupGroup
+from ifccheck.beam import BarGroup, Bars, StirrupGroup
 from ifccheck.units import INCH, QuantityError, clipped, parse_quantity
 
 Family = Literal["metric", "imperial", "nominal"]
@@ -254,3 +255,31 @@ def show_stirrups(stirrups: StirrupGroup) -> str:
     """Return stirrups in notation: ``2 legs 10M @ 250 mm``."""
     legs = "" if stirrups.legs is None else f"{stirrups.legs} legs "
     return f"{legs}{stirrups.designation} @ {stirrups.spacing:g} mm"
+
+
+_SAME_PLACE = 1e-6
+_STEEPEST_BEND = 0.5
+"""Rise of a face for each mm beyond which bars do not follow it in pieces"""
+
+
+def bars_in_a_row(bars: Iterable[Bars]) -> list[tuple[Bars, ...]]:
+    """Bars, each with the pieces of it that go on at another height along a taper."""
+    rows: list[list[Bars]] = []
+    for bar in bars:
+        before = next((row for row in rows if _goes_on(row[-1], bar)), None)
+        if before is None:
+            rows.append([bar])
+        else:
+            before.append(bar)
+    return [tuple(row) for row in rows]
+
+
+def _goes_on(before: Bars, bar: Bars) -> bool:
+    """Whether a bar is the next piece of another."""
+    rise = abs(bar.z - before.z)
+    return (
+        abs(before.end - bar.start) < _SAME_PLACE
+        and 0.0 < rise <= _STEEPEST_BEND * min(bar.end - bar.start, before.end - before.start)
+        and (bar.designation, bar.diameter, bar.count, bar.origin)
+        == (before.designation, before.diameter, before.count, before.origin)
+    )

@@ -10,7 +10,7 @@ from contextlib import suppress
 from dataclasses import dataclass
 from pathlib import Path
 
-from ifccheck.errors import OutputError
+from ifccheck.errors import OutputError, UsageError
 
 
 @dataclass(slots=True)
@@ -24,7 +24,7 @@ class _Output:
     in_place: bool = False
 
 
-def write_all(files: Mapping[Path, bytes]) -> None:
+def write_all(files: Mapping[Path, bytes], elsewhere: str = "another folder with --out") -> None:
     """Write files whole; where one cannot be written, leave everything as it was."""
     outputs = [_output(target) for target in files]
     made_folders: list[Path] = []
@@ -47,11 +47,23 @@ def write_all(files: Mapping[Path, bytes]) -> None:
         if isinstance(error, OSError):
             raise OutputError(
                 f"{current}: cannot be written ({error.strerror or error}); nothing was changed: "
-                "free the place or give another folder with --out"
+                f"free the place or give {elsewhere}"
             ) from error
         raise
     finally:
         _clear(outputs)
+
+
+def write_new(target: Path, data: bytes) -> None:
+    """Write a file whole where none stands yet; refuse where one does."""
+    refuse_existing(target)
+    write_all({target: data}, "another file")
+
+
+def refuse_existing(target: Path) -> None:
+    """Raise UsageError where something stands in a file's place already."""
+    if os.path.lexists(target):
+        raise UsageError(f"{target}: exists already and is left as it is: name another file")
 
 
 def _output(target: Path) -> _Output:

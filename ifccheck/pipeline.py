@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Collection, Mapping, Sequence
+from collections.abc import Callable, Collection, Iterable, Mapping, Sequence
 from dataclasses import dataclass
 from pathlib import Path
 
@@ -87,14 +87,6 @@ class Run:
         """0 where every beam in scope is adequate and there is at least one, else 3."""
         verdicts = [r.verdict for report in self.reports for r in report.ratings.values()]
         return 0 if verdicts and set(verdicts) == {Verdict.ADEQUATE} else 3
-
-
-@dataclass(frozen=True)
-class Survey:
-    """What a model holds, and what a rating of each beam would lack."""
-
-    model: Model
-    missing: Mapping[str, tuple[str, ...]]
 
 
 @uncollected()
@@ -222,12 +214,7 @@ def find_beams(read: Read, plan: Plan) -> Found:
 
 def rate_model(read: Read, matches: Matches, plan: Plan, found: Sequence[Found], say: Say) -> Rated:
     """Rate one model: gather what each beam rests on, then all of them on arrays."""
-    say(f"gathering loads and supports of {read.model.file_name}")
-    beams = {beam.key: beam for beam in read.model.beams}
-    model = results.with_beams(
-        read.model, tuple(with_schedule(plan.schedule, matches, beams).values())
-    )
-    gathered = gather(model, plan.brief, matches, plan.standard)
+    model, gathered = gather_model(read, matches, plan, say)
     say(f"rating {read.model.file_name}")
     rated = tuple(
         batches(gathered.subjects, plan.standard, plan.options, plan.cases, plan.combinations)
@@ -246,6 +233,16 @@ def rate_model(read: Read, matches: Matches, plan: Plan, found: Sequence[Found],
     return Rated(read, gathered, rated, report)
 
 
+def gather_model(read: Read, matches: Matches, plan: Plan, say: Say) -> tuple[Model, Gathered]:
+    """Join one model with the brief and its schedule: what each beam rests on."""
+    say(f"gathering loads and supports of {read.model.file_name}")
+    beams = {beam.key: beam for beam in read.model.beams}
+    model = results.with_beams(
+        read.model, tuple(with_schedule(plan.schedule, matches, beams).values())
+    )
+    return model, gather(model, plan.brief, matches, plan.standard)
+
+
 @uncollected()
 def publish(
     run: Run, out: Path, only: Collection[str], say: Say = lambda _: None
@@ -258,27 +255,24 @@ def publish(
         made = results.files_of(rated.read.opened, rated.report, out, only)
         written[rated.report.model.file_name] = tuple(made)
         files.update(made)
-    sources = {rated.read.opened.path.resolve() for rated in run.rated}
-    sources |= {run.plan.brief.path.resolve()}
+    write_beside(files, [*(rated.read.opened.path for rated in run.rated), run.plan.brief.path])
+    return written
+
+
+def write_beside(files: Mapping[Path, bytes], inputs: Iterable[Path]) -> None:
+    """Write files, all of them or none, and none of them over an input."""
+    sources = {path.resolve() for path in inputs}
     if overwritten := sources & {path.resolve() for path in files}:
         raise UsageError(
             f"{sorted(overwritten)[0]}: a result would overwrite an input; name another folder"
             " with --out"
         )
     write_all(files)
-    return written
 
 
 def output_name(path: Path) -> str:
     """Stem of the results of a model; a trailing ``-rated`` is not repeated."""
     return path.stem.removesuffix("-rated")
-
-
-def survey(model: Path, brief_path: Path | None, say: Say = lambda _: None) -> Survey:
-    """Tell what a model holds and what a rating would lack."""
-    brief = load_brief(brief_path) if brief_path else None
-    read = read_models([model], brief, say)[0]
-    return Survey(read.model, results.missing_of(read.model))
 
 
 def sheets(

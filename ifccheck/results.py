@@ -8,15 +8,18 @@ from dataclasses import replace
 from pathlib import Path
 from typing import TYPE_CHECKING
 
-from ifccheck.beam import Beam, Case, Combination, Model, Remark
+from ifccheck.beam import Beam, Case, Combination, Model, Reason, Remark
 from ifccheck.brief.model import Brief
+from ifccheck.findings import Finding
 from ifccheck.publish.report import Assumption, CaseSummary, Report
-from ifccheck.rating.answers import ratings_of, unrated
+from ifccheck.publish.words import CURES, NO_LOAD, head_of
+from ifccheck.rating.answers import ratings_of, unrated, unstated_stirrups
 from ifccheck.rating.batch import Batch
 from ifccheck.rating.results import Rating
+from ifccheck.rating.subject import Subject, Unrated
 from ifccheck.sheet import Sheet, bare_sheet, sheet_maker
 from ifccheck.standards import Options, Standard
-from ifccheck.subjects import Gathered
+from ifccheck.subjects import Gathered, yield_unknown
 
 if TYPE_CHECKING:
     from ifccheck.ifc.opening import OpenedModel
@@ -184,18 +187,57 @@ def files_of(
     return files
 
 
-def missing_of(model: Model) -> dict[str, tuple[str, ...]]:
-    """What a rating of each beam would lack, as far as the model alone can tell."""
-    return {beam.key: tuple(_missing(beam)) for beam in model.beams}
+def findings_of(
+    model: Model,
+    gathered: Gathered,
+    filled: Gathered,
+    unmet: Mapping[str, tuple[str, ...]],
+    brief: Brief,
+) -> dict[str, Finding]:
+    """What a rating of each beam would lack, by key.
+
+    ``gathered`` is by the brief as it is, ``filled`` by the same with all defaults given: it
+    shows what else is missing once they are. ``unmet`` is of the information requirement.
+    """
+    hidden = {each.beam.key: _hidden(each, brief) for each in filled.subjects}
+    hidden |= {each.beam.key: list(each.reasons) for each in filled.unrated}
+    as_it_is: list[Subject | Unrated] = [*gathered.subjects, *gathered.unrated]
+    known = {each.beam.key: each for each in as_it_is}
+    return {
+        beam.key: _finding(
+            (*known[beam.key].reasons, *hidden[beam.key]),
+            known[beam.key].remarks,
+            unmet.get(beam.key, ()),
+            briefed=bool(brief.file_name),
+        )
+        for beam in model.beams
+    }
 
 
-def _missing(beam: Beam) -> Iterable[str]:
-    yield from (reason.text for reason in beam.reasons)
-    if beam.strength_reason is not None:
-        yield beam.strength_reason.text
-    elif beam.concrete_strength is None:
-        yield "concrete strength"
-    if not beam.reinforcement:
-        yield "reinforcement"
-    for source in beam.reinforcement:
-        yield from (reason.text for reason in source.reasons)
+def _hidden(subject: Subject, brief: Brief) -> list[Reason]:
+    """What is missing of a beam's steel once its cover is known."""
+    steel = (
+        ("bars", subject.bar_yield, brief.defaults.bar_yield),
+        ("stirrups", subject.stirrup_yield, brief.defaults.stirrup_yield),
+    )
+    unknown = [
+        yield_unknown(what)
+        for what, yields, default in steel
+        if default is None and any(given.assumed for given in yields)
+    ]
+    texts = [Reason(text) for text in (*unknown, *unstated_stirrups(subject))]
+    return [*subject.reasons, *texts]
+
+
+def _finding(
+    reasons: Sequence[Reason], remarks: Sequence[Remark], unmet: tuple[str, ...], *, briefed: bool
+) -> Finding:
+    said = dict.fromkeys(each.text for each in reasons)
+    texts = [text for text in said if briefed or text != NO_LOAD]
+    to_state = [text for text in texts if head_of(text) in CURES]
+    return Finding(
+        lacks=tuple(text for text in texts if text not in to_state),
+        to_state=tuple(to_state),
+        doubts=tuple(dict.fromkeys(each.text for each in remarks if each.kind == "doubt")),
+        unmet=unmet,
+    )

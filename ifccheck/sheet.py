@@ -23,12 +23,12 @@ from ifccheck.beam import (
     Load,
     Nature,
     Outline,
-    Run,
     Span,
     Stirrups,
 )
 from ifccheck.rating.batch import Batch
 from ifccheck.rating.results import LimitStateRating, Rating
+from ifccheck.rating.runs import outline_of
 from ifccheck.rating.shares import Arising, Shares, arising
 from ifccheck.rating.subject import Subject
 from ifccheck.standards import CalculationLine
@@ -265,7 +265,7 @@ def sheet_maker(
             loads=(*_self_weight(arisen, subject, row), *subject.loads),
             bars=subject.bars,
             stirrups=subject.stirrups,
-            section=_outline_at(subject.runs, section_x),
+            section=outline_of(subject.runs, section_x),
             section_x=section_x,
             checks=checks,
             diagrams=_diagrams(batch, row, rating),
@@ -316,7 +316,8 @@ def _self_weight(arisen: Arising, subject: Subject, row: int) -> Iterator[Load]:
     weight = show(subject.unit_weight.value, "unit_weight").replace(".0 ", " ")
     for i in np.flatnonzero(table.beam == row).tolist():
         values = float(table.value_start[i]), float(table.value_end[i])
-        text = f"{show(values[0], 'line_load')} (self weight, {weight})"
+        both = dict.fromkeys(show(value, "line_load") for value in values)
+        text = f"{' to '.join(both)} (self weight, {weight})"
         yield Load(
             subject.beam.key, SELF, "line", float(table.start[i]), float(table.end[i]), values,
             origin=f"outline; {subject.unit_weight.source}", text=text,
@@ -351,11 +352,6 @@ def _section_x(batch: Batch, row: int, rating: Rating) -> float:
     place = rating.governing.position if rating.governing else math.nan
     span = batch.subjects[row].span
     return place if math.isfinite(place) else (span.start + span.end) / 2.0
-
-
-def _outline_at(runs: Sequence[Run], x: float) -> Outline:
-    held = [run for run in runs if run.start <= x]
-    return (held[-1] if held else runs[0]).outline
 
 
 def _diagrams(batch: Batch, row: int, rating: Rating) -> tuple[Diagram, ...]:

@@ -11,7 +11,8 @@ import math
 from collections.abc import Iterable, Mapping, Sequence
 from typing import TYPE_CHECKING
 
-from ifccheck.beam import Beam, Model, OutOfScope, Span, Verdict
+from ifccheck.beam import Beam, Model, Outline, OutOfScope, Span, Verdict
+from ifccheck.findings import Survey
 from ifccheck.rating import LimitStateRating, Rating, SafeLoad
 
 if TYPE_CHECKING:
@@ -71,24 +72,45 @@ def run_frame(
     return pd.concat(frames, ignore_index=True)
 
 
-def survey_frame(beams: Sequence[Beam], missing: Mapping[str, Sequence[str]]) -> pd.DataFrame:
+def _sections(beam: Beam) -> str:
+    """The names of its sections; where they vary and have none, their width and depth [mm]."""
+    outlines = [end for run in beam.runs for end in (run.outline, run.outline_end) if end]
+    if len(outlines) < 2:
+        return outlines[0].name if outlines else ""
+    return " to ".join(dict.fromkeys(outline.name or _size(outline) for outline in outlines))
+
+
+def _size(outline: Outline) -> str:
+    ys, zs = zip(*outline.rings[0], strict=True)
+    return f"{max(ys) - min(ys):.0f} x {max(zs) - min(zs):.0f}"
+
+
+def survey_frame(surveys: Iterable[Survey]) -> pd.DataFrame:
     """Return one row per beam: what the model says of it, and what a rating would lack."""
     return _frame(
-        {
-            "mark": beam.mark,
-            "key": beam.key,
-            "storey": beam.storey,
-            "section": " to ".join(dict.fromkeys(run.outline.name for run in beam.runs)),
-            "length_m": _metres(beam.length),
-            "material": beam.material,
-            "concrete_strength_MPa": beam.concrete_strength.value
-            if beam.concrete_strength
-            else math.nan,
-            "reinforcement": ", ".join(each.source for each in beam.reinforcement),
-            "missing": "; ".join(missing.get(beam.key, ())),
-        }
-        for beam in beams
+        {**_surveyed_cells(survey, beam), "model": survey.model.file_name}
+        for survey in surveys
+        for beam in survey.model.beams
     )
+
+
+def _surveyed_cells(survey: Survey, beam: Beam) -> dict[str, Cell]:
+    strength, finding = beam.concrete_strength, survey.of(beam)
+    return {
+        "mark": beam.mark,
+        "key": beam.key,
+        "storey": beam.storey,
+        "section": _sections(beam),
+        "length_m": _metres(beam.length),
+        "material": beam.material,
+        "concrete_strength_MPa": strength.value if strength else math.nan,
+        "reinforcement": ", ".join(each.source for each in beam.reinforcement),
+        "state": str(finding.state),
+        "missing": "; ".join(finding.lacks),
+        "brief_must_state": "; ".join(finding.to_state),
+        "doubts": "; ".join(finding.doubts),
+        "requirement_unmet": "; ".join(finding.unmet),
+    }
 
 
 def limit_states_frame(beams: Sequence[Beam], ratings: Mapping[str, Rating]) -> pd.DataFrame:
@@ -175,7 +197,7 @@ def _beam_cells(beam: Beam, span: Span | None) -> dict[str, Cell]:
         "key": beam.key,
         "storey": beam.storey,
         "type": beam.type_name,
-        "section": " to ".join(dict.fromkeys(run.outline.name for run in beam.runs)),
+        "section": _sections(beam),
         "material": beam.material,
         "concrete_strength_MPa": strength.value if strength else math.nan,
         "length_m": _metres(beam.length) if beam.axis else math.nan,

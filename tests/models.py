@@ -13,7 +13,7 @@ import math
 import random
 import re
 import uuid
-from collections.abc import Mapping, Sequence
+from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass, field
 from pathlib import Path
 from typing import Any, Literal
@@ -23,6 +23,7 @@ import ifcopenshell.guid
 
 from ifccheck.pipeline import Run, rate
 from ifccheck.publish.json import ratings_json
+from tests.bodies_of_beams import Bodies
 
 Triple = tuple[float, float, float]
 Outline = tuple[tuple[float, float], ...]
@@ -92,6 +93,8 @@ class MadeBeam:
     direction: float = 0.0
     """Of the beam in plan [deg]"""
     class_name: str = "IfcBeam"
+    body: Callable[[Bodies], list[Any]] | None = None
+    """Draws the items of its body; None extrudes the outline"""
     openings: tuple[Hole, ...] = ()
 
 
@@ -274,8 +277,8 @@ class Model:
         ends = (0.0, float(len(points) - 1)) if self.setting.schema == "IFC2X3" else (None, None)
         return self.make("IfcSweptDiskSolid", curve, self.length(diameter / 2.0), None, *ends)
 
-    def _shape(self, solid: Any, kind: str) -> Any:
-        body = self.make("IfcShapeRepresentation", self.context, "Body", kind, [solid])
+    def _shape(self, *solids: Any, kind: str = "SweptSolid") -> Any:
+        body = self.make("IfcShapeRepresentation", self.context, "Body", kind, list(solids))
         return self.make("IfcProductDefinitionShape", None, None, [body])
 
     def _frames(self, frame: Frame) -> tuple[Frame, Frame]:
@@ -291,10 +294,11 @@ class Model:
         frame = self._beam_frame(beam)
         placed, inner = self._frames(frame)
         outline = tuple((self._y(y), z) for y, z in beam.outline)
-        solid = self._extrusion(outline, inner, False, beam.length)
-        element = self._element(
-            beam.class_name, beam.mark, placed, self._shape(solid, "SweptSolid")
-        )
+        if beam.body is None:
+            items = [self._extrusion(outline, inner, False, beam.length)]
+        else:
+            items = self._drawn(beam, beam.body, inner)
+        element = self._element(beam.class_name, beam.mark, placed, self._shape(*items))
         element.Tag = f"tag of {beam.mark}"
         for number, hole in enumerate(beam.openings):
             self._opening(beam, hole, element, inner, f"hole {number} of {beam.mark}")
@@ -306,12 +310,36 @@ class Model:
             self.bars += made
         self._columns(beam, frame)
 
+    def _drawn(
+        self, beam: MadeBeam, draw: Callable[[Bodies], list[Any]], inner: Frame
+    ) -> list[Any]:
+        """The items of a body; in a mirrored building each a mapped item that mirrors it."""
+        turn = -1.0 if self.setting.from_end else 1.0
+
+        def at(place: Triple) -> Triple:
+            return inner.point((self._x(beam, place[0]), turn * place[1], place[2]))
+
+        def way(vector: Triple) -> Triple:
+            return inner.vector((turn * vector[0], turn * vector[1], vector[2]))
+
+        mm = LENGTH_UNITS[self.setting.unit]
+        if not self.setting.mirrored:
+            return draw(Bodies(self.file, mm, at, way))
+        bodies = Bodies(self.file, mm)
+        axes = [
+            self.make("IfcDirection", [float(v) for v in way(each)])
+            for each in ((1, 0, 0), (0, -1, 0), (0, 0, 1))
+        ]
+        origin = self._point(*at((0.0, 0.0, 0.0)))
+        named = dict(zip(("Axis1", "Axis2", "Axis3"), axes, strict=True))
+        return [bodies.mapped(item, LocalOrigin=origin, **named) for item in draw(bodies)]
+
     def add_slab(self, slab: MadeSlab) -> None:
         frame, sign = Frame((0.0, 0.0, slab.bottom)), -1.0 if self.setting.mirrored else 1.0
         placed, inner = self._frames(frame)
         ring = tuple((sign * x, y) for x, y in slab.ring)
         solid = self._extrusion(ring, inner, True, slab.thickness)
-        shape = self._shape(solid, "SweptSolid")
+        shape = self._shape(solid)
         element = self._element("IfcSlab", slab.name, placed, shape)
         for number, hole in enumerate(slab.holes):
             ring = tuple((sign * x, y) for x, y in hole)
@@ -331,7 +359,7 @@ class Model:
         placement = self.make("IfcLocalPlacement", host.ObjectPlacement, self._axes(Frame()))
         opening = self.rooted(
             "IfcOpeningElement", name, Name=name, ObjectPlacement=placement,
-            Representation=self._shape(solid, "SweptSolid"),
+            Representation=self._shape(solid),
         )  # fmt: skip
         self.rooted(
             "IfcRelVoidsElement", name, RelatingBuildingElement=host,
@@ -409,7 +437,9 @@ class Model:
             NominalDiameter=self.length(diameter),
             CrossSectionArea=area / AREA_UNITS[self.setting.unit],
             ObjectPlacement=placement,
-            Representation=self._shape(self._sweep(own, diameter, frame), "AdvancedSweptSolid"),
+            Representation=self._shape(
+                self._sweep(own, diameter, frame), kind="AdvancedSweptSolid"
+            ),
         )  # fmt: skip
         setattr(bar, "BarRole" if self.setting.schema == "IFC2X3" else "PredefinedType", role)
         return bar
@@ -423,7 +453,7 @@ class Model:
                 Frame(frame.point((self._x(beam, x), 0.0, -3000.0)), frame.angle)
             )
             solid = self._extrusion(rectangle(size, size), inner, True, 3000.0)
-            shape = self._shape(solid, "SweptSolid")
+            shape = self._shape(solid)
             self._element("IfcColumn", f"{beam.mark} column at {end}", placed, shape)
 
     def finish(self) -> bytes:

@@ -18,7 +18,8 @@ from click.testing import CliRunner
 from ifccheck.beam import Verdict
 from ifccheck.cli import main
 from ifccheck.errors import ModelError
-from ifccheck.pipeline import Run, publish, rate, survey
+from ifccheck.pipeline import Run, publish, rate
+from ifccheck.surveying import survey
 
 GENEROUS = """
 [basis]
@@ -136,12 +137,12 @@ def test_survey(name: str, open_models: Path) -> None:
     path = open_models / f"{name}.ifc"
     if name == NO_BEAM:
         with pytest.raises(ModelError, match="holds no beam"):
-            survey(path, None)
+            survey([path])
         return
-    found = survey(path, None)
-    of_model = found.model
+    (found,) = survey([path])
+    of_model = found.survey.model
     assert len(of_model.beams) + len(of_model.out_of_scope) == len(raw_beams(path))
-    assert set(found.missing) == {beam.key for beam in of_model.beams}
+    assert set(found.survey.findings) == {beam.key for beam in of_model.beams}
 
 
 def test_every_beam_is_answered_for(rated: Rated) -> None:

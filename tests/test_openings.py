@@ -14,16 +14,17 @@ from hypothesis import strategies as st
 from shapely import Polygon, box
 from shapely.ops import unary_union
 
-from ifccheck.beam import Opening, Outline, Run, ShearLoss, Stirrups, Verdict
+from ifccheck.beam import Opening, Outline, RatedBody, Run, ShearLoss, Stirrups, Verdict
 from ifccheck.frame.figures import figure_of
 from ifccheck.frame.net_outlines import net_runs
 from ifccheck.frame.openings import GROSS_WEIGHT, NET_WEIGHT, Net, net_of
 from ifccheck.frame.spans import Standing
 from ifccheck.mechanics.overhangs import overhangs
 from ifccheck.mechanics.width_profile import gaps_of, least_width, strips_of
+from ifccheck.rating.shape import shape_reasons
 from ifccheck.rating.subject import Subject
 from ifccheck.units import show
-from tests.made_subjects import line, point, rated, subject
+from tests.made_subjects import STANDARD, line, point, rated, subject
 
 LENGTH, DEPTH, WIDTH = 6000.0, 600.0, 300.0
 TEE = Outline((
@@ -489,13 +490,24 @@ def test_self_weight_that_may_relieve_is_that_of_what_is_left(made: Subject) -> 
 
 
 def test_a_divided_section_that_no_rule_has_judged_is_not_rated_in_shear() -> None:
-    """A body may be modelled with a hole in it, which no opening tells of."""
     made = subject(loads=(line("floor", 2.0),))
     runs, _ = net_runs(made.beam.runs, (hole(2500),))
-    beam = replace(made.beam, runs=tuple(replace(run, whole=None) for run in runs))
-    rating = rated(replace(made, beam=beam))[1][0]
+    body = RatedBody(runs, (), made.beam.runs)
+    rating = rated(replace(made, body=body))[1][0]
     assert rating.verdict is Verdict.NOT_RATED
     assert any("an opening, recess or notch" in state.why_not for state in rating.limit_states)
+
+
+def test_a_hole_that_no_opening_tells_of_is_a_step() -> None:
+    """A body may be modelled with a hole in it."""
+    made = subject()
+    runs, _ = net_runs(made.beam.runs, (hole(2500),))
+    drawn = tuple(replace(run, whole=None) for run in runs)
+    found = [each.text for each in shape_reasons(drawn, made.span, made.faces, STANDARD)]
+    assert found == [
+        "not rated within one depth of the step at x = 2.50 m",
+        "not rated within one depth of the step at x = 2.65 m",
+    ]
 
 
 def test_more_opening_is_never_more_strength() -> None:

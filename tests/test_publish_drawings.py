@@ -363,6 +363,29 @@ def test_a_plan_tells_how_far_every_beam_falls_short() -> None:
                 assert {beam.mark, utilisation_words(rating.utilisation)} <= shown
 
 
+def test_a_plate_out_of_level_is_drawn_in_its_whole_width() -> None:
+    """Not as a line along its lower edge: 4 m wide, 0.2 m thick, with a fall of 1 in 20."""
+    beam = next(b for b in REPORT.model.beams if b.mark == "B-1000")
+    fall = ((-2000.0, 0.0), (2000.0, 200.0), (2000.0, 400.0), (-2000.0, 200.0))
+    plate = replace(beam, runs=(replace(beam.runs[0], outline=Outline((fall,))),))
+    model = replace(REPORT.model, beams=(plate,), members=())
+    (plan,) = framing_plans(model, REPORT.ratings, {plate.key: 0})
+    (body,) = of_class(plan.svg, "body")
+    xs, ys = zip(*numbers(body.get("d") or ""), strict=True)
+    wide, long = max(ys) - min(ys), max(xs) - min(xs)
+    assert wide / long == pytest.approx(4000.0 / beam.length, rel=1e-3)
+    assert of_class(plan.svg, "flange") == []
+
+
+def test_a_text_beside_a_beam_is_the_first_that_finds_room() -> None:
+    beam = Stroke((0.0, 100.0), (60.0, 100.0), 3.0)
+    labels = Labels([beam])
+    labels.set(beam, "B-1", "", always=False)
+    added = labels.add(beam, ["300 x 500, 35 MPa, bars", "300 x 500", "35"])
+    assert re.findall(r">([^<]+)</text>", added) == ["300 x 500"]
+    assert labels.add(beam, ["300 x 500"]) == ""
+
+
 def test_mark_and_utilisation_part_where_no_room_for_both_is_on_one_side() -> None:
     """Crossing beams leave room for six letters at a time: too few for both, enough for each."""
     girder = Stroke((0.0, 100.0), (200.0, 100.0), 3.0)

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import io
 import re
-from collections.abc import Callable, Mapping, Sequence
+from collections.abc import Callable
 from dataclasses import replace
 from functools import partial
 from pathlib import Path
@@ -15,15 +15,18 @@ from hypothesis import strategies as st
 from rich.console import Console, RenderableType
 from rich.text import Text
 
-from ifccheck.beam import Model, Remark, Verdict
+from ifccheck.beam import Remark, Verdict
+from ifccheck.findings import Finding, Survey
 from ifccheck.publish.quantities import typographic
-from ifccheck.publish.terminal import closing_table, standards_table, survey_table
+from ifccheck.publish.terminal import closing_table, standards_table
 from ifccheck.publish.terminal_parts import column_widths
 from ifccheck.publish.terminal_sheet import sheet_text
+from ifccheck.publish.terminal_survey import survey_text
 from ifccheck.sheet import NOTHING_DEMANDED, CaseReaction, CaseShare, Sheet, SheetCheck
 from ifccheck.standards import Standard
 from ifccheck.standards.discovery import all_standards
 from tests.reports_made_up import hostile_report, made_up_report
+from tests.surveys_made_up import hostile_survey, made_up_survey, survey_of
 
 REPORT = made_up_report()
 CONTROLS = re.compile("[\x00-\x09\x0b-\x1f\x7f-\x9f\u202a-\u202e\u2066-\u2069]")
@@ -51,10 +54,8 @@ def sheet_said(sheet: Sheet, width: int = 140, code: str = "utf-8") -> str:
     return said(partial(sheet_text, sheet), width, code)
 
 
-def survey_said(
-    model: Model, missing: Mapping[str, Sequence[str]], width: int = 140, code: str = "utf-8"
-) -> str:
-    return said(lambda shown: survey_table(model, missing, shown), width, code)
+def survey_said(survey: Survey, width: int = 140, code: str = "utf-8") -> str:
+    return said(partial(survey_text, survey), width, code)
 
 
 def closing(report: object = REPORT, written: tuple[Path, ...] = ()) -> str:
@@ -169,19 +170,17 @@ def test_units_are_set_as_the_terminal_can_show_them() -> None:
     assert "kN*m" not in sheet_said(worst_sheet())
     plain_text = sheet_said(worst_sheet(), code="ascii")
     assert "kN*m" in plain_text
-    survey_said(REPORT.model, {}, code="ascii")
+    survey_said(made_up_survey(), code="ascii")
     closing_table(REPORT, console(encoding="ascii"))
 
 
 def test_words_of_a_survey_and_of_the_standards_are_whole_at_80_columns() -> None:
-    keys = list(REPORT.ratings)
-    missing = {keys[0]: ("reinforcement",), keys[1]: ("yield strength of the stirrups unknown",)}
     standards = [
         (standard.id, standard) for _, standard in all_standards() if isinstance(standard, Standard)
     ]
-    survey = survey_said(REPORT.model, missing, 80)
+    survey = survey_said(made_up_survey(), 80)
     listed = said(lambda shown: standards_table(standards, shown), 80)
-    assert {"reinforcement", "stirrups", "Concrete", "C30/37"} <= set(re.split(r"[\s;]+", survey))
+    assert {"reinforcement", "obliquely", "Concrete", "C30/37"} <= set(re.split(r"[\s;]+", survey))
     words = {word for _, s in standards for word in f"{s.title} {s.edition} {s.actions}".split()}
     assert words <= set(listed.split())
     for text in (survey, listed):
@@ -218,19 +217,67 @@ def test_reasons_are_told_with_what_settles_them() -> None:
 
 def test_a_survey_groups_beams_and_says_what_is_missing() -> None:
     keys = list(REPORT.ratings)
-    missing = {keys[0]: ("reinforcement",), keys[1]: ("reinforcement", "material")}
-    text = survey_said(REPORT.model, missing)
-    assert "press-hall.ifc (IFC4): 35 beams in scope" in text
-    assert "reinforcement (2 of 6); material (1 of 6)" in text
-    assert "33 of 35 beams lack nothing" in text
-    assert "Out of scope: 2 steel, 1 timber." in text
+    lacking = Finding(lacks=("no reinforcement found",))
+    findings = {keys[0]: lacking, keys[1]: Finding(lacks=("no reinforcement found", "material"))}
+    text = survey_said(survey_of(REPORT.model, findings))
+    assert "press-hall.ifc (IFC4): 35 beams in scope\nOut of scope: 2 steel, 1 timber\n" in text
+    assert "no reinforcement found (2 of 6)" in text
+    assert "material (1 of 6)" in text
+    assert re.search(r"2 +no reinforcement found +a schedule, a mapping", text)
+    assert "Nothing missing: 33 of 35 beams. Loads are the brief's to give." in text
+    assert "Information requirement met: 35 of 35 beams." in text
+
+
+def test_a_survey_tells_doubts_that_differ_by_their_numbers_once() -> None:
+    keys = list(REPORT.ratings)
+    findings = {
+        key: Finding(doubts=(f"bars #{i} and 2 more: cut over {i} mm: measured on the line",))
+        for i, key in enumerate(keys[:4])
+    }
+    text = survey_said(survey_of(REPORT.model, findings))
+    assert re.search(r"4 +cut over 0 mm: measured on the line", text)
+    assert "bars #" not in text
+    assert "Nothing missing: 35 of 35 beams (4 with doubts)." in text
+
+
+def test_a_survey_of_one_beam_and_of_none_reads_as_people_speak() -> None:
+    beams = REPORT.model.beams
+    one = survey_said(survey_of(replace(REPORT.model, beams=beams[:1]), {}))
+    assert "1 beam in scope" in one
+    assert "Nothing missing: 1 of 1 beam." in one
+    none = survey_said(survey_of(replace(REPORT.model, beams=()), {}))
+    assert none == "press-hall.ifc (IFC4): no concrete beam\nOut of scope: 2 steel, 1 timber\n"
+
+
+def test_a_survey_with_a_brief_does_not_tell_that_loads_are_its_to_give() -> None:
+    survey = survey_of(REPORT.model, {}, brief_name="brief.toml")
+    assert "Loads are" not in survey_said(survey)
+
+
+@pytest.mark.parametrize(
+    ("count", "words"),
+    [(0, "The file holds no bars."), (1, "The file holds 1 bar; bars were read of 12 beams")],
+)
+def test_a_survey_tells_how_many_bars_were_left_in_the_file(count: int, words: str) -> None:
+    assert words in survey_said(replace(made_up_survey(), bars_in_file=count))
+
+
+def test_a_survey_of_many_kinds_of_beams_stays_short() -> None:
+    """Beyond sixty groups the beams of a storey are told together."""
+    beams = tuple(
+        replace(beam, material=f"Concrete {i}") for i, beam in enumerate(REPORT.model.beams * 2)
+    )
+    keyed = tuple(replace(beam, key=str(i)) for i, beam in enumerate(beams))
+    text = survey_said(survey_of(replace(REPORT.model, beams=keyed), {}), 80)
+    assert len(text.splitlines()) < 40
+    assert re.search(r"\d+ materials", text)
 
 
 def test_names_cannot_steer_the_terminal() -> None:
     report = hostile_report()
     texts = [
         closing(report, (Path("out/\x1b[2J.ifc"),)),
-        survey_said(report.model, {}),
+        survey_said(hostile_survey()),
         *(sheet_said(report.sheet(key)) for key in list(report.ratings)[:8]),
     ]
     for text in texts:

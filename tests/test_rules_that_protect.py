@@ -733,15 +733,20 @@ def faceted(model: str) -> str:
 BODIES: Mapping[str, tuple[str, str]] = {
     "opening": (opening(SOUND), "opening cannot be read"),
     "tendon": (tendon(SOUND), "prestressed"),
-    "notch along the beam": (notched(SOUND), "not read yet"),
-    "Brep": (faceted(SOUND), "faceted Brep"),
+    "Brep without faces": (faceted(SOUND), "body has no faces"),
 }
 
 
 @pytest.mark.parametrize("kind", BODIES)
-def test_bodies_that_are_not_read_yet(tmp_path: Path, kind: str) -> None:
+def test_bodies_that_cannot_be_rated(tmp_path: Path, kind: str) -> None:
     model, why = BODIES[kind]
     check_not_rated(rated(tmp_path, model), why)
+
+
+def test_a_cut_along_the_beam_is_taken_off_its_section(tmp_path: Path) -> None:
+    found = {item.name: item.value for item in rated(tmp_path, notched(SOUND)).basis}
+    assert found["Depth"] == pytest.approx(300.0)
+    assert found["EffectiveDepthSagging"] == pytest.approx(300.0 - 63.9)
 
 
 def test_a_member_that_stands(tmp_path: Path) -> None:

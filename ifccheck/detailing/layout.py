@@ -30,7 +30,7 @@ from ifccheck.detailing.layers import (
 )
 from ifccheck.detailing.room import NoRoomError, soffit_and_top, web
 from ifccheck.detailing.segments import PLACES, Kind, Place, Segment, segments_of
-from ifccheck.notation import show_bars
+from ifccheck.notation import bars_in_a_row, show_bars
 from ifccheck.units import show
 
 STAGE = "reinforcement"
@@ -129,6 +129,12 @@ class _Findings:
             self.remark(f"bars laid out: {_summary(bars)}", "note")
         if any(Anchor.ANCHORED in (bar.start_anchor, bar.end_anchor) for bar in bars):
             self.remark("bars given without their ends are taken as anchored", "assumption")
+        if bars and any(run.outline_end is not None for run in self.beam.runs):
+            self.remark(
+                "where the section tapers, bars are laid out along its faces, in pieces of one"
+                " height each; their force is that of bars inclined as the face beside them",
+                "assumption",
+            )
         for face in self.silent:
             self.remark(f"{face} bars not stated: taken as none", "assumption")
         if not known:
@@ -140,12 +146,14 @@ class _Findings:
 
 def _summary(bars: Sequence[Bars]) -> str:
     """How many bars of what size lie at which height, from the lowest up."""
-    counts: dict[tuple[float, str], int] = {}
-    for bar in bars:
-        key = (bar.z, bar.designation)
-        counts[key] = counts.get(key, 0) + bar.count
+    counts: dict[tuple[float, float, str], int] = {}
+    for row in bars_in_a_row(bars):
+        heights = [bar.z for bar in row]
+        key = (min(heights), max(heights), row[0].designation)
+        counts[key] = counts.get(key, 0) + row[0].count
     return ", ".join(
-        f"{count}-{designation} at {z:.0f} mm" for (z, designation), count in sorted(counts.items())
+        f"{count}-{designation} at {low:.0f}{f' to {high:.0f}' if high > low else ''} mm"
+        for (low, high, designation), count in sorted(counts.items())
     )
 
 

@@ -151,7 +151,8 @@ def _described_totals(zones: Sequence[DescribedZone]) -> _Totals:
 
 def _thirds(beam: Beam) -> tuple[float, float]:
     """Heights below which bars are bottom bars, and above which they are top bars [mm]."""
-    heights = [z for run in beam.runs for ring in run.outline.rings for _, z in ring]
+    outlines = [end for run in beam.runs for end in (run.outline, run.outline_end) if end]
+    heights = [z for outline in outlines for ring in outline.rings for _, z in ring]
     low, high = min(heights, default=0.0), max(heights, default=0.0)
     return low + (high - low) / 3.0, high - (high - low) / 3.0
 

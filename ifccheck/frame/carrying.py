@@ -51,6 +51,18 @@ def contacts_of(model: Model, stated: Stated) -> dict[str, tuple[Contact, ...]]:
     return carried_contacts(contacts, others, model.beams, model.out_of_scope, stated)
 
 
+def unheld_ends(contacts: Sequence[Contact]) -> tuple[End, ...]:
+    """Return the ends of a beam that nothing which touches it can be counted on to hold.
+
+    Where something that may hold it touches it from below between its ends, neither end can be
+    taken as the one that is held.
+    """
+    if any(c.place == "between" and c.side == "below" and c.bears for c in contacts):
+        return ENDS
+    held = {contact.place for contact in contacts if is_seat(contact) and not contact.doubt}
+    return tuple(end for end in ENDS if end not in held)
+
+
 def carried_contacts(
     contacts: Mapping[str, Sequence[Contact]],
     others: Mapping[str, Sequence[Contact]],

@@ -17,7 +17,8 @@ from typing import Literal
 
 import numpy as np
 
-from ifccheck.beam import Beam, Contact, Member
+from ifccheck.beam import Beam, Contact, Member, Run
+from ifccheck.frame.along import along_runs
 from ifccheck.frame.boxes import (
     Bools,
     Boxes,
@@ -78,6 +79,8 @@ class _Spanning:
     steps: Ints
     boxes: Boxes
     """x along the span, z up"""
+    runs: Sequence[Sequence[Run]]
+    """Of each; empty where only the box is known"""
 
 
 @dataclass(frozen=True, slots=True)
@@ -141,7 +144,8 @@ def find_contacts(
     """
     solid = [beam for beam in beams if beam.axis is not None and beam.runs]
     steps = np.array([beam.step_id for beam in solid], np.int64)
-    spanning = _Spanning([beam.key for beam in solid], steps, beam_boxes(solid))
+    keys, runs = [beam.key for beam in solid], [beam.runs for beam in solid]
+    spanning = _Spanning(keys, steps, beam_boxes(solid), runs)
     return {beam.key: () for beam in beams} | _contacts_of(spanning, members)
 
 
@@ -159,6 +163,7 @@ def contacts_of_others(
         [keys.get(member.step_id, f"#{member.step_id}") for member in lying],
         np.array([member.step_id for member in lying], np.int64),
         _along_spans(member_boxes(lying)),
+        [()] * len(lying),
     )
     return _contacts_of(spanning, members)
 
@@ -229,18 +234,20 @@ def _find_touches(spanning: _Spanning, neighbours: _Neighbours) -> tuple[_Touche
     beam, other = near_pairs(spanning.boxes.grown(NEAR), neighbours.boxes)
     foreign = spanning.steps[beam] != neighbours.steps[other]
     beam, other = beam[foreign], other[foreign]
-    touching, rest = _touches(spanning.boxes, neighbours, (beam, other), TOLERANCE)
-    near, _ = _touches(spanning.boxes, neighbours, rest, NEAR)
+    touching, rest = _touches(spanning, neighbours, (beam, other), TOLERANCE)
+    near, _ = _touches(spanning, neighbours, rest, NEAR)
     return touching, near
 
 
 def _touches(
-    own: Boxes, neighbours: _Neighbours, pairs: tuple[Ints, Ints], tolerance: float
+    spanning: _Spanning, neighbours: _Neighbours, pairs: tuple[Ints, Ints], tolerance: float
 ) -> tuple[_Touches, tuple[Ints, Ints]]:
     """Those of the pairs that touch, and the other pairs."""
+    own = spanning.boxes
     grown = own.grown(tolerance)
     covered = overlaps(grown.take(pairs[0]), neighbours.boxes.take(pairs[1]))
     within_plan(covered, grown, neighbours.members, pairs)
+    along_runs(covered, spanning.runs, pairs[0], tolerance)
     apart = np.isnan(covered[:, 0, 0])
     beam, other = pairs[0][~apart], pairs[1][~apart]
     outer, inner = own.take(beam), neighbours.boxes.take(other)

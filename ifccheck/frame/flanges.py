@@ -18,6 +18,7 @@ from functools import cached_property, lru_cache
 from typing import TYPE_CHECKING, NamedTuple
 
 from ifccheck.beam import Axis, Beam, Flange, Member, Outline, Ring, Run, Slab
+from ifccheck.frame.along import varies
 from ifccheck.frame.contacts import kind_of
 from ifccheck.frame.figures import figure_of, narrowest
 from ifccheck.frame.reaches import Plan, Reach, Side, apart, bridged, reaches, spread
@@ -38,7 +39,7 @@ LAP = 1.0
 FARTHEST = 0.1
 """Part of a beam's length beyond which no overhang counts"""
 LOWER_HALF = "it lies in the lower half of the beam's depth"
-VARIES = "the beam's section varies there"
+VARIES = "the beam's section varies along it"
 
 
 @dataclass(frozen=True, slots=True)
@@ -190,7 +191,7 @@ class _Around:
         for slab in slabs:
             for run in self.beam.runs:
                 for strip, reach in self._beside(run, slab):
-                    if doubt := slab.doubt or _doubt(run, slab.bottom - self.axis.origin[2]):
+                    if doubt := slab.doubt or self._doubt(run, slab):
                         doubts[f"{slab.name}: {doubt}"] = None
                     else:
                         strips[strip].append(reach)
@@ -198,6 +199,14 @@ class _Around:
             flange for strip, rows in strips.items() for flange in self._flanges(strip, rows)
         ]
         return Meeting(tuple(flanges), tuple(doubts))
+
+    def _doubt(self, run: Run, slab: Slab) -> str:
+        """Why a slab counts for nothing at a run."""
+        if varies(self.beam.runs):
+            return VARIES
+        _, low, _, high = figure_of(run.outline).bounds
+        bottom = slab.bottom - self.axis.origin[2]
+        return LOWER_HALF if bottom < (low + high) / 2.0 else ""
 
     def _beside(self, run: Run, slab: Slab) -> Iterator[tuple[_Strip, Reach]]:
         """What of a slab lies beside a run of the beam, and what of it on top."""
@@ -276,14 +285,6 @@ class _Around:
             and web.low <= base + strip.bottom + TOUCHING
             and web.high >= base + strip.top - TOUCHING
         ]
-
-
-def _doubt(run: Run, bottom: float) -> str:
-    """Why slab whose underside is at a height above the soffit counts for nothing at a run."""
-    _, low, _, high = figure_of(run.outline).bounds
-    if run.outline_end is not None:
-        return VARIES
-    return LOWER_HALF if bottom < (low + high) / 2.0 else ""
 
 
 def _face(run: Run, heights: tuple[float, float], outward: float, *, on_top: bool) -> float:

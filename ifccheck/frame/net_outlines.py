@@ -31,16 +31,22 @@ def place_of(opening: Opening) -> str:
 def net_runs(
     runs_of_beam: Sequence[Run], openings: Sequence[Opening]
 ) -> tuple[tuple[Run, ...], list[Reason]]:
-    """The runs cut where openings begin and end, each with what is left of its outline."""
+    """The runs cut where openings begin and end, each with what is left of its outline.
+
+    Tapers stay as they are: no opening may lie in one.
+    """
     runs: list[Run] = []
     gone: list[Reason] = []
     for run in runs_of_beam:
+        if run.outline_end is not None:
+            runs.append(run)
+            continue
         for start, end in _pieces(run, openings):
             here = [one for one in openings if one.start < end and one.end > start]
             whole = figure_of(run.outline)
             figure = without(whole, here)
             if figure is whole:
-                runs.append(Run(start, end, run.outline, run.outline_end))
+                runs.append(Run(start, end, run.outline))
             elif not parts_of(figure):
                 gone.append(Reason(f"{place_of(here[0])} takes the whole section"))
             else:

@@ -13,9 +13,10 @@ It is ours, on the cautious side of what is published:
 - An opening that only narrows the web is small where it takes a quarter of the web's width at the
   most; where it lies within the web, its length is limited as well. Width is that of what is left.
 - Within one depth of the face of a support (half of the depth in Tan and Mansur, ACI Structural
-  Journal 93-S37, 1996), within half a depth of a concentrated load (same paper), where openings
-  less than a depth apart are together too high, and where a stirrup's leg is cut, nothing is
-  small. What is not small is not rated in shear, over its length and half a depth on either side.
+  Journal 93-S37, 1996) or of a change of the section, within half a depth of a concentrated load
+  (same paper), where openings less than a depth apart are together too high, and where a stirrup's
+  leg is cut, nothing is small. What is not small is not rated in shear, over its length and half a
+  depth on either side.
 """
 
 from __future__ import annotations
@@ -50,11 +51,11 @@ APART = 1.0
 
 RULE = (
     "rule for openings: small up to a quarter of the depth in height and in length, with chords of"
-    " a quarter of the depth or more, one depth off a support, half a depth off a concentrated"
-    " load; there shear is carried over dv less the opening's height, over its length and half a"
-    " depth on either side (after Mansur and Tan, Concrete Beams with Openings, 1999, from memory,"
-    " on the cautious side); what is not small is not rated in shear; flexure is that of the"
-    " outline which is left"
+    " a quarter of the depth or more, one depth off a support and a change of the section, half a"
+    " depth off a concentrated load; there shear is carried over dv less the opening's height,"
+    " over its length and half a depth on either side (after Mansur and Tan, Concrete Beams with"
+    " Openings, 1999, from memory, on the cautious side); what is not small is not rated in shear;"
+    " flexure is that of the outline which is left"
 )
 
 
@@ -68,6 +69,8 @@ class Surroundings:
     """Whether there is a support at the start and at the end"""
     loads: Sequence[Load]
     stirrups: Sequence[Stirrups]
+    changes: Sequence[float] = ()
+    """Where the section of the beam changes, or begins to taper [mm]"""
 
 
 @dataclass(frozen=True, slots=True)
@@ -177,6 +180,7 @@ def _faults(one: Measured, everyone: Sequence[Measured], around: Surroundings) -
     if one.narrowed > NOTHING and (leg := _cut_leg(one, around.stirrups)):
         yield leg
     yield from _near_support(one, around)
+    yield from _near_change(one, around.changes)
     yield from _near_load(one, around.loads)
     yield from _near_others(one, everyone)
 
@@ -186,6 +190,14 @@ def _near_support(one: Measured, around: Surroundings) -> Iterator[str]:
     for end, gap, held in zip(("start", "end"), gaps, around.held, strict=True):
         if held and gap < DISTURBED * one.depth - NOTHING:
             yield f"it lies within one depth of the support at the {end}"
+
+
+def _near_change(one: Measured, changes: Sequence[float]) -> Iterator[str]:
+    """Beside a step, or where a chord turns, the depth that carries shear is disturbed already."""
+    reach = DISTURBED * one.depth - NOTHING
+    near = [x for x in changes if one.opening.start - reach < x < one.opening.end + reach]
+    if near:
+        yield f"it lies within one depth of where the section changes ({show(near[0], 'length')})"
 
 
 def _near_load(one: Measured, loads: Sequence[Load]) -> Iterator[str]:

@@ -79,7 +79,9 @@ def net_of(
         return Net(reasons=(*impossible, *gone), remarks=slab.remarks)
     kinds = standing.span.start_support.kind, standing.span.end_support.kind
     held = kinds[0] != "free", kinds[1] != "free"
-    judged = judged_openings(beam, Surroundings(standing.faces, held, loads, steel.stirrups))
+    changes = [run.start for run in beam.runs[1:]]
+    around = Surroundings(standing.faces, held, loads, steel.stirrups, changes)
+    judged = judged_openings(beam, around)
     light = (all(held) and "fixed" in kinds) or _upward(loads)
     notes = [Remark(beam.key, STAGE, told(one), "note") for one in judged]
     taken = (RULE, NET_WEIGHT if light else GROSS_WEIGHT)

@@ -8,19 +8,19 @@ from dataclasses import dataclass, field, replace
 from functools import lru_cache
 
 from ifccheck.beam import Beam, Box, Opening, OutOfScope, Reason, Remark, Run
-from ifccheck.ifc.bodies import body_items, read_prism
 from ifccheck.ifc.concretes import Concretes
 from ifccheck.ifc.context import Context
-from ifccheck.ifc.entity import ILL_TYPED, Entity, UnreadableError, text
+from ifccheck.ifc.entity import ILL_TYPED, UnreadableError, text
 from ifccheck.ifc.materials import MaterialDefinition, Materials
 from ifccheck.ifc.plain_bodies import PlainBodies
 from ifccheck.ifc.precast import told_precast
 from ifccheck.ifc.products import Product
 from ifccheck.ifc.profiles import Profiles
 from ifccheck.ifc.properties import Sets
-from ifccheck.ifc.scope import Clues, judge
+from ifccheck.ifc.scope import Clues, Scope, judge
+from ifccheck.ifc.shapes import Shapes
 from ifccheck.ifc.storeys import Storeys
-from ifccheck.ifc.straight import Straight, straighten
+from ifccheck.ifc.straight import Straight
 from ifccheck.ifc.strength import GENERAL
 from ifccheck.ifc.tendons import Tendons
 from ifccheck.ifc.vocabulary import speaks_of_lightweight, speaks_of_prestress
@@ -76,7 +76,7 @@ class BeamReader:
         bodies: PlainBodies,
     ) -> None:
         self._context = context
-        self._profiles = profiles
+        self._shapes = Shapes(context, profiles)
         self._bodies = bodies
         self._storeys = storeys
         self._model = model
@@ -95,14 +95,15 @@ class BeamReader:
         """Return what the model says of a beam."""
         step_id = product.step_id
         doubts = _Doubts(identity.key)
-        straight = self._straight(step_id, doubts)
+        straight = self._plain(step_id)
         definition = self._materials.of(step_id)
         sets = self._context.properties.of(step_id)
-        clues = self._clues(product, straight, definition, sets)
-        scope = judge(clues)
-        if scope.unknown:
-            clues = replace(clues, properties=_told_by_properties(sets))
-            scope = judge(clues)
+        clues, scope = self._scope(product, straight, definition, sets)
+        if straight is None and scope.left_out is None:
+            straight = self._sliced(step_id, doubts)
+            clues, scope = self._scope(product, straight, definition, sets)
+        if straight is not None:
+            _note_shape(straight, doubts)
         box = straight.box if straight is not None else None
         if scope.left_out is not None:
             return Found(self._left_out(product, identity, *scope.left_out), box)
@@ -112,30 +113,37 @@ class BeamReader:
         beam = self._beam(product, identity, straight, clues, sets, doubts)
         return Found(beam, box)
 
-    def _straight(self, step_id: int, doubts: _Doubts) -> Straight | None:
+    def _plain(self, step_id: int) -> Straight | None:
+        """The body where it is a plain extrusion; None where it is not, or is none."""
         try:
             if step_id in self._bodies:
-                straight = self._bodies.straight(step_id)
-            else:
-                straight = self._read_straight(self._context.file.by_id(step_id))
+                return self._bodies.straight(step_id)
+            return self._shapes.plain(self._context.file.by_id(step_id))
+        except (UnreadableError, *ILL_TYPED):
+            return None  # slicing it tells why, where it cannot be read
+
+    def _sliced(self, step_id: int, doubts: _Doubts) -> Straight | None:
+        try:
+            return self._shapes.sliced(self._context.file.by_id(step_id))
         except UnreadableError as error:
             doubts.reason(str(error))
-            return None
         except ILL_TYPED as error:
             doubts.reason(f"body cannot be read: it does not hold what its classes ask ({error})")
-            return None
-        for end, length, steep in zip(
-            ("start", "end"), straight.oblique, straight.steep, strict=True
-        ):
-            _note_oblique(end, length, steep, doubts)
-        return straight
+        return None
 
-    def _read_straight(self, entity: Entity) -> Straight:
-        items = body_items(self._context, entity)
-        if len(items) != 1:
-            raise UnreadableError(_number_of_bodies(len(items)))
-        prism = read_prism(self._context, self._profiles, items[0])
-        return straighten(prism, self._context.placements.matrix(entity))
+    def _scope(
+        self,
+        product: Product,
+        straight: Straight | None,
+        definition: MaterialDefinition,
+        sets: Sets,
+    ) -> tuple[Clues, Scope]:
+        clues = self._clues(product, straight, definition, sets)
+        scope = judge(clues)
+        if scope.unknown:
+            clues = replace(clues, properties=_told_by_properties(sets))
+            scope = judge(clues)
+        return clues, scope
 
     def _clues(
         self,
@@ -265,8 +273,12 @@ def _told_by_properties(sets: Sets) -> tuple[tuple[str, str], ...]:
     )
 
 
-def _number_of_bodies(count: int) -> str:
-    return "no body in the model" if count == 0 else f"body of {count} parts: not read yet"
+def _note_shape(straight: Straight, doubts: _Doubts) -> None:
+    doubts.reasons += straight.reasons
+    for told in straight.remarks:
+        doubts.remark(GEOMETRY, told)
+    for end, length, steep in zip(("start", "end"), straight.oblique, straight.steep, strict=True):
+        _note_oblique(end, length, steep, doubts)
 
 
 def _note_oblique(end: str, length: float, steep: bool, doubts: _Doubts) -> None:
@@ -283,7 +295,7 @@ def _note_oblique(end: str, length: float, steep: bool, doubts: _Doubts) -> None
 def _runs(straight: Straight | None) -> tuple[Run, ...]:
     if straight is None:
         return ()
-    return (Run(0.0, straight.axis.length, straight.outline),)
+    return straight.runs or (Run(0.0, straight.axis.length, straight.outline),)
 
 
 def _doubt_density(clues: Clues, doubts: _Doubts) -> None:

@@ -25,29 +25,6 @@ SOLID_TYPES = frozenset({
     "MappedRepresentation", "Tessellation", "SurfaceModel", "SectionedSpine",
 })  # fmt: skip
 
-NOT_READ_YET = {
-    "IfcFacetedBrep": "faceted Brep",
-    "IfcFacetedBrepWithVoids": "faceted Brep",
-    "IfcAdvancedBrep": "Brep with curved faces",
-    "IfcAdvancedBrepWithVoids": "Brep with curved faces",
-    "IfcTriangulatedFaceSet": "tessellation",
-    "IfcPolygonalFaceSet": "tessellation",
-    "IfcTriangulatedIrregularNetwork": "tessellation",
-    "IfcShellBasedSurfaceModel": "surface model",
-    "IfcFaceBasedSurfaceModel": "surface model",
-    "IfcCsgSolid": "CSG solid",
-    "IfcExtrudedAreaSolidTapered": "tapered extrusion",
-    "IfcRevolvedAreaSolid": "revolved solid",
-    "IfcRevolvedAreaSolidTapered": "revolved solid",
-    "IfcSweptDiskSolid": "swept disk",
-    "IfcSweptDiskSolidPolygonal": "swept disk",
-    "IfcFixedReferenceSweptAreaSolid": "solid swept along a curve",
-    "IfcSurfaceCurveSweptAreaSolid": "solid swept along a curve",
-    "IfcDirectrixDerivedReferenceSweptAreaSolid": "solid swept along a curve",
-    "IfcSectionedSpine": "sectioned solid",
-    "IfcSectionedSolidHorizontal": "sectioned solid",
-}
-
 BOOLEANS = ("IfcBooleanResult", "IfcBooleanClippingResult")
 DEEPEST = 20
 """Mapped items nested deeper than this refer to each other."""
@@ -137,12 +114,11 @@ def read_prism(context: Context, profiles: Profiles, placed: Placed) -> Prism:
     cuts: list[Cut] = []
     while item.is_a() in BOOLEANS:
         if get(item, "Operator") != "DIFFERENCE":
-            raise UnreadableError(f"body is a boolean {get(item, 'Operator')}: not read yet")
+            raise UnreadableError(f"body is a boolean {get(item, 'Operator')}: no plain extrusion")
         cuts.append(read_cut(need(item, "SecondOperand"), context.placements))
         item = need(item, "FirstOperand")
-    kind = item.is_a()
-    if kind != "IfcExtrudedAreaSolid":
-        raise UnreadableError(f"body is a {NOT_READ_YET.get(kind, kind)}: not read yet")
+    if item.is_a() != "IfcExtrudedAreaSolid":
+        raise UnreadableError(f"body is an {item.is_a()}: no plain extrusion")
     prism = extrusion(context, profiles, Placed(item, matrix, mapped))
     return replace(prism, cuts=tuple(cut.moved(matrix) for cut in cuts)) if cuts else prism
 
@@ -150,17 +126,23 @@ def read_prism(context: Context, profiles: Profiles, placed: Placed) -> Prism:
 def extrusion(context: Context, profiles: Profiles, placed: Placed) -> Prism:
     """Return an IfcExtrudedAreaSolid in the building; the taper of a tapered one is not in it."""
     item, matrix, mapped = placed
+    area, position, along = extruded(context, item)
+    profile = profiles.of(area)
+    axes = context.placements.axes(position)
+    whole = matrix if axes is IDENTITY else matrix @ axes
+    along = combined(whole[:3, :3].T.tolist(), along)
+    return _unscaled(profile, whole, along) if mapped else Prism(profile, whole, along)
+
+
+def extruded(context: Context, item: Entity) -> tuple[Entity, Entity | None, Triple]:
+    """Return what is extruded, where it is placed, and how far, in its own coordinates [mm]."""
     area, position, direction, depth = (item.get_argument(number) for number in range(4))
     if area is None or direction is None or depth is None:
         raise UnreadableError("body is an extrusion without a profile, a direction or a depth")
-    profile = profiles.of(area)
-    axes = context.placements.axes(position)
     depth *= context.units.length
     if not (math.isfinite(depth) and depth > 0.0):
         raise UnreadableError(f"body is extruded by {depth:g} mm")
-    whole = matrix if axes is IDENTITY else matrix @ axes
-    along = combined(whole[:3, :3].T.tolist(), scaled(unit(numbers(direction, 3)), depth))
-    return _unscaled(profile, whole, along) if mapped else Prism(profile, whole, along)
+    return area, position, scaled(unit(numbers(direction, 3)), depth)
 
 
 def _unscaled(profile: Profile, matrix: Matrix, along: Triple) -> Prism:

@@ -52,10 +52,10 @@ class Cut:
 def read_cut(operand: Entity, placements: Placements) -> Cut:
     """Return the cut that subtracting a half-space makes; raises UnreadableError for others."""
     if not operand.is_a("IfcHalfSpaceSolid"):
-        raise UnreadableError(f"body is cut by an {operand.is_a()}: not read yet")
+        raise UnreadableError(f"body is cut by an {operand.is_a()}: no plain extrusion")
     surface = need(operand, "BaseSurface")
     if not surface.is_a("IfcPlane"):
-        raise UnreadableError(f"body is cut along an {surface.is_a()}: not read yet")
+        raise UnreadableError(f"body is cut along an {surface.is_a()}: no plain extrusion")
     plane = placements.axes(get(surface, "Position"))
     # the half-space fills the side away from the normal where the flag agrees with it
     outward = -plane[:3, 2] if get(operand, "AgreementFlag") else plane[:3, 2]
@@ -104,7 +104,7 @@ def acts(cut: Cut, cloud: Cloud) -> bool:
         return True
     share = _covered(cut.bound, taken_off(cloud, cut))
     if 0.0 < share < 1.0:
-        raise UnreadableError("body is notched or cut over part of its section: not read yet")
+        raise UnreadableError("body is notched or cut over part of its section: no plain extrusion")
     return share > 0.0
 
 

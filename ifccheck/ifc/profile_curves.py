@@ -15,6 +15,7 @@ import numpy.typing as npt
 
 from ifccheck.ifc.entity import Entity, UnreadableError, get, label, need, numbers, several
 from ifccheck.ifc.placements import Placements
+from ifccheck.ifc.splines import spline_points
 
 Points = npt.NDArray[np.float64]
 """Points of a plane, one a row [mm]."""
@@ -88,6 +89,11 @@ def ring(pieces: Sequence[Piece], hole: bool = False) -> Points:
         outward = anticlockwise != hole
         places = clean([place for piece in pieces for place in _traced(piece, outward)])
     return np.array(places if anticlockwise != hole else places[::-1])
+
+
+def traced(piece: Piece) -> list[Place]:
+    """Return points on a piece of a curve, its two ends included."""
+    return [piece.at] if isinstance(piece, Corner) else piece.traced(inside=True)
 
 
 def _traced(piece: Piece, left_turns_inside: bool) -> list[Place]:
@@ -285,6 +291,10 @@ def _on_conic(conic: Arc, trim: Sequence[Entity], placements: Placements) -> flo
     return parameter * placements.angle_scale
 
 
+def _spline(curve: Entity, placements: Placements) -> list[Piece]:
+    return [Corner((y, z)) for y, z in spline_points(curve, placements.scale).tolist()]
+
+
 READERS: dict[str, Callable[[Entity, Placements], list[Piece]]] = {
     "IfcPolyline": _polyline,
     "IfcIndexedPolyCurve": _indexed,
@@ -293,4 +303,6 @@ READERS: dict[str, Callable[[Entity, Placements], list[Piece]]] = {
     "IfcTrimmedCurve": _trimmed,
     "IfcCircle": _whole_conic,
     "IfcEllipse": _whole_conic,
+    "IfcBSplineCurveWithKnots": _spline,
+    "IfcRationalBSplineCurveWithKnots": _spline,
 }

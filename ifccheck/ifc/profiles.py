@@ -4,14 +4,18 @@ from __future__ import annotations
 
 import math
 from collections.abc import Sequence
+from typing import TYPE_CHECKING
 
 import numpy as np
 
 from ifccheck.ifc.entity import Entity, UnreadableError, get, need, several, text
 from ifccheck.ifc.placements import IDENTITY, Placements
-from ifccheck.ifc.profile_curves import Corner, Points, read_pieces, ring
+from ifccheck.ifc.profile_curves import Corner, Points, read_pieces, ring, traced
 from ifccheck.ifc.profile_families import FAMILIES, SLOPES
 from ifccheck.ifc.profile_shapes import Profile
+
+if TYPE_CHECKING:
+    from shapely import Polygon
 
 MAY_BE_NEGATIVE = ("TopXOffset",)
 
@@ -45,6 +49,8 @@ class Profiles:
             found = self._derived(profile)
         elif kind == "IfcCompositeProfileDef":
             found = self._composite(profile)
+        elif kind == "IfcCenterLineProfileDef":
+            found = self._along_centre_line(profile)
         elif kind in ("IfcArbitraryClosedProfileDef", "IfcArbitraryProfileDefWithVoids"):
             found = self._arbitrary(profile)
         elif kind in FAMILIES:
@@ -87,6 +93,19 @@ class Profiles:
         require_simple(rings)
         return Profile(rings)
 
+    def _along_centre_line(self, profile: Entity) -> Profile:
+        """A strip of even thickness, its corners mitred, its ends square."""
+        from shapely import LineString, Polygon
+
+        pieces = read_pieces(need(profile, "Curve"), self._placements)
+        places = [place for piece in pieces for place in traced(piece)]
+        thickness = float(need(profile, "Thickness")) * self._placements.scale
+        line = LineString(list(dict.fromkeys(places)))
+        strip = line.buffer(thickness / 2.0, cap_style="flat", join_style="mitre", mitre_limit=10.0)
+        if not isinstance(strip, Polygon) or not line.is_simple:
+            raise UnreadableError("centre line of a profile that crosses itself")
+        return _of_polygon(strip)
+
     def _derived(self, profile: Entity) -> Profile:
         parent = self.of(need(profile, "ParentProfile"))
         if profile.is_a() == "IfcMirroredProfileDef":
@@ -100,13 +119,17 @@ class Profiles:
         joined = unary_union([Polygon(part.rings[0], part.rings[1:]) for part in parts])
         if not isinstance(joined, Polygon):
             raise UnreadableError("composite profile of separate parts")
-        rings = [joined.exterior, *joined.interiors]
-        return Profile(
-            tuple(
-                ring([Corner((x, y)) for x, y in part.coords], hole=number > 0)
-                for number, part in enumerate(rings)
-            )
+        return _of_polygon(joined)
+
+
+def _of_polygon(polygon: Polygon) -> Profile:
+    rings = [polygon.exterior, *polygon.interiors]
+    return Profile(
+        tuple(
+            ring([Corner((x, y)) for x, y in part.coords], hole=number > 0)
+            for number, part in enumerate(rings)
         )
+    )
 
 
 def require_simple(rings: Sequence[Points]) -> None:

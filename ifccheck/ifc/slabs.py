@@ -28,7 +28,7 @@ from ifccheck.ifc.precast import told_precast
 from ifccheck.ifc.profiles import Profiles
 from ifccheck.ifc.scope import Clues, judge
 from ifccheck.ifc.strength import GENERAL
-from ifccheck.ifc.tessellation import tessellated
+from ifccheck.ifc.tessellated import tessellated
 from ifccheck.ifc.vectors import unit
 from ifccheck.ifc.vocabulary import speaks_of_prestress
 from ifccheck.ifc.voids import FACETED
@@ -136,7 +136,7 @@ class SlabReader:
         if item.is_a() == "IfcExtrudedAreaSolid":
             return extrusion(self._context, self._profiles, placed).corners()
         flat = any(item.is_a(name) for name in FACETED)
-        local = points_of(self._context, item) if flat else tessellated(item)
+        local = points_of(self._context, item) if flat else tessellated(item).points
         return np.asarray(local @ matrix[:3, :3].T + matrix[:3, 3])
 
 

@@ -15,7 +15,7 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from ifccheck.beam import Axis, Box, Outline
+from ifccheck.beam import Axis, Box, Outline, Reason, Run
 from ifccheck.ifc.bodies import Prism
 from ifccheck.ifc.clips import acts
 from ifccheck.ifc.entity import UnreadableError
@@ -38,7 +38,7 @@ SQUARE = 1e-12
 """Slant of an end below which it is square."""
 ALONG = 1e-6
 """Sine of the angle below which a plane runs along the span."""
-VARIES = "section varies along the beam: not read yet"
+VARIES = "section varies along the beam"
 
 Axes = tuple[Triple, Triple, Triple]
 """x along the span from the start, y to the left, z up."""
@@ -58,6 +58,12 @@ class Straight:
     """Stretch along the axis over which the start and the end are cut obliquely [mm]."""
     steep: tuple[bool, bool]
     """Whether the depth near the start and the end is reduced by the slant."""
+    runs: tuple[Run, ...] = ()
+    """Its sections where they are not the outline from end to end"""
+    reasons: tuple[Reason, ...] = ()
+    """What keeps it from being adequate"""
+    remarks: tuple[str, ...] = ()
+    """What is doubtful of how it is drawn"""
 
 
 @dataclass(frozen=True, slots=True)
@@ -142,7 +148,7 @@ def _require_clear(length: float, side: float, depth: float) -> None:
 
 
 def _along_extrusion(prism: Prism, placement: Matrix) -> _Member:
-    axes = _axes(prism.along, placement)
+    axes = member_axes(prism.along, placement)
     _, left, up = axes
     x, y, normal = prism.axes
     section = prism.profile.turned(dot(left, x), dot(left, y), dot(up, x), dot(up, y))
@@ -159,7 +165,7 @@ def _along_elevation(prism: Prism, elevation: Elevation, placement: Matrix) -> _
     """The body swept along the two parallel sides of its profile, ended by the other sides."""
     corners = prism.placed(elevation.corners)
     sides = after(corners) - corners
-    axes = _axes(sides[elevation.first].tolist(), placement)
+    axes = member_axes(sides[elevation.first].tolist(), placement)
     frame = np.array(axes)
     base = corners[elevation.first]
     local = (corners - base) @ frame.T
@@ -180,8 +186,11 @@ def _along_elevation(prism: Prism, elevation: Elevation, placement: Matrix) -> _
     return _Member(axes, (a, b, c), turned, tuple(planes))
 
 
-def _axes(span: Sequence[float], placement: Matrix) -> Axes:
-    """The axes of a member that runs along ``span``, from its start."""
+def member_axes(span: Sequence[float], placement: Matrix) -> Axes:
+    """Return the axes of a member that runs along ``span``, from its start.
+
+    Raises UnreadableError where it stands upright.
+    """
     x = scaled(span, 1.0 / size(span))
     if abs(x[2]) > VERTICAL:
         raise UnreadableError("vertical member")
@@ -258,7 +267,7 @@ def _reach(planes: Sequence[Plane], places: Sequence[Place]) -> tuple[list[float
 def _reach_of(plane: Plane, places: Sequence[Place]) -> list[float]:
     (along, left, up), offset = plane
     if abs(along) < ALONG * math.hypot(along, left, up):
-        raise UnreadableError("body is cut along its length: not read yet")
+        raise UnreadableError("body is cut along its length: no plain extrusion")
     base, left, up = offset / along, left / along, up / along
     if abs(left) < SQUARE and abs(up) < SQUARE:
         return [base] * len(places)

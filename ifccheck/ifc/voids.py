@@ -29,7 +29,7 @@ from ifccheck.ifc.placements import Matrix
 from ifccheck.ifc.points import points_of
 from ifccheck.ifc.profile_curves import SAGITTA
 from ifccheck.ifc.profiles import Profiles
-from ifccheck.ifc.tessellation import DEFLECTION, tessellated
+from ifccheck.ifc.tessellated import tessellated
 from ifccheck.openings import OpeningShape
 
 if TYPE_CHECKING:
@@ -117,7 +117,7 @@ class VoidReader:
         item, matrix, _ = placed
         if any(item.is_a(name) for name in FACETED):
             return _moved(points_of(self._context, item), matrix)
-        return _moved(tessellated(item), matrix)
+        return _moved(tessellated(item).points, matrix)
 
     def _extruded(self, placed: Placed, axis: Axis, runs: Sequence[Run]) -> _Extent:
         prism = extrusion(self._context, self._profiles, placed)
@@ -191,7 +191,7 @@ def _grown(extent: _Extent, item: Entity) -> _Extent:
     if item.is_a() == "IfcExtrudedAreaSolid":
         short = 0.0 if _straight_edged(need(item, "SweptArea")) else SAGITTA
     else:
-        short = DEFLECTION
+        short = SAGITTA
     return extent._replace(low=extent.low - short, high=extent.high + short)
 
 
@@ -220,7 +220,7 @@ def _cut(extent: _Extent, axis: Axis, runs: Sequence[Run], origin: str) -> Openi
     if left - right < NOTHING or top - bottom < NOTHING:
         return None
     taken = box(right, bottom, left, top)
-    if not any(taken.intersection(_polygon(rings)).area > NOTHING**2 for rings in _rings(met)):
+    if not any(taken.intersection(_covered(run)).area > NOTHING**2 for run in met):
         return None
     start, end, right, left, bottom, top = (
         round(value, 6) for value in (start, end, right, left, bottom, top)
@@ -236,6 +236,17 @@ def _bounds(runs: Sequence[Run]) -> tuple[float, float, float, float]:
     points = [point for rings in _rings(runs) for ring in rings for point in ring]
     ys, zs = [y for y, _ in points], [z for _, z in points]
     return min(ys), max(ys), min(zs), max(zs)
+
+
+def _covered(run: Run) -> BaseGeometry:
+    """What a run covers as seen along the beam; of a taper the hull of both of its ends."""
+    from shapely import MultiPoint
+
+    if run.outline_end is None:
+        return _polygon(run.outline.rings)
+    return MultiPoint(
+        [point for rings in _rings([run]) for ring in rings for point in ring]
+    ).convex_hull
 
 
 def _polygon(rings: Sequence[Sequence[tuple[float, float]]]) -> BaseGeometry:

@@ -61,6 +61,17 @@ class Members:
 
 
 @dataclass(frozen=True, slots=True)
+class Chords:
+    """How top and soffit are inclined to the axis, one row per station (N)."""
+
+    top_rise: Floats
+    """Rise of the top for each mm along x"""
+    soffit_rise: Floats
+    steel_follows: Bools
+    """The bars near a face lie along it, else parallel to the axis"""
+
+
+@dataclass(frozen=True, slots=True)
 class Stations:
     """Places along the beams, one row each (N), sorted by beam, then x, then side."""
 
@@ -84,6 +95,8 @@ class Stations:
     shear_loss: Floats
     """Depth that openings take away from what carries shear [mm] (N); nan where the section
     cannot be rated in shear"""
+    chords: Chords | None = None
+    """None where no chord is inclined"""
 
 
 @dataclass(frozen=True, slots=True)

@@ -8,7 +8,7 @@ from collections.abc import Iterator, Sequence
 import numpy as np
 
 from ifccheck.beam import Bars, Outline, Stirrups
-from ifccheck.publish.elevation import LEFT, RIGHT, WIDTH, bar_words
+from ifccheck.publish.elevation import LEFT, RIGHT, WIDTH, Drawable, bar_words
 from ifccheck.publish.quantities import typographic
 from ifccheck.publish.svg import (
     Place,
@@ -22,7 +22,7 @@ from ifccheck.publish.svg import (
     segment,
     thinned,
 )
-from ifccheck.sheet import Diagram, Floats, Sheet
+from ifccheck.sheet import Diagram, Floats
 from ifccheck.units import show
 
 SECTION_WIDTH, SECTION_BOX = 300.0, (190.0, 190.0)
@@ -33,8 +33,8 @@ SHOWN_BEYOND = 4.0
 """A resistance is drawn up to this many times the greatest demand."""
 
 
-def section(sheet: Sheet) -> str:
-    """Return the section at the governing place with the bars and stirrups found there."""
+def section(sheet: Drawable) -> str:
+    """Return the section at the place of interest with the bars and stirrups found there."""
     if sheet.section is None:
         return ""
     frame = _SectionFrame(sheet.section)

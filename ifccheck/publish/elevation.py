@@ -5,8 +5,22 @@ from __future__ import annotations
 from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
 from functools import cached_property
+from typing import Protocol
 
-from ifccheck.beam import SELF, Anchor, Bars, Load, Ring, Run, Span, Stirrups, Support
+from ifccheck.beam import (
+    SELF,
+    Anchor,
+    Bars,
+    Beam,
+    Load,
+    Outline,
+    Ring,
+    Run,
+    Span,
+    Stirrups,
+    Support,
+)
+from ifccheck.notation import bars_in_a_row
 from ifccheck.publish.openings import drawn_opening
 from ifccheck.publish.quantities import typographic
 from ifccheck.publish.svg import (
@@ -19,7 +33,8 @@ from ifccheck.publish.svg import (
     segment,
     thinned,
 )
-from ifccheck.sheet import Sheet
+from ifccheck.rating.disturbed import disturbed
+from ifccheck.rating.runs import outline_of
 from ifccheck.units import show
 
 WIDTH, LEFT, RIGHT = 760.0, 56.0, 18.0
@@ -73,7 +88,39 @@ class Frame:
         return self.bottom - height * self.up
 
 
-def elevation(sheet: Sheet) -> str:
+class Drawable(Protocol):
+    """A beam with what is drawn of it: the sheet of a rating, or of a survey."""
+
+    @property
+    def beam(self) -> Beam:
+        """Whose axis and outline are drawn."""
+
+    @property
+    def span(self) -> Span | None:
+        """None where nothing tells how it stands."""
+
+    @property
+    def loads(self) -> tuple[Load, ...]:
+        """What acts on it."""
+
+    @property
+    def bars(self) -> tuple[Bars, ...]:
+        """By place."""
+
+    @property
+    def stirrups(self) -> tuple[Stirrups, ...]:
+        """By place."""
+
+    @property
+    def section(self) -> Outline | None:
+        """The outline at the place of interest."""
+
+    @property
+    def section_x(self) -> float:
+        """That place [mm]."""
+
+
+def elevation(sheet: Drawable) -> str:
     """Return the elevation of a beam; empty where its body could not be read."""
     runs = sheet.beam.runs
     length = sheet.beam.length or max((run.end for run in runs), default=0.0)
@@ -88,10 +135,11 @@ def elevation(sheet: Sheet) -> str:
         above.drawn(frame),
         below.drawn(frame),
         _body(runs, frame),
+        _not_rated(runs, frame),
         *(_stirrup_set(stirrups, frame, foot) for stirrups in sheet.stirrups),
         *(drawn_opening(opening, sheet.beam, frame) for opening in sheet.beam.openings),
-        *(_bar_layer(i, bars, frame) for i, bars in enumerate(sheet.bars)),
-        _supports(sheet.span, frame),
+        *(_bar_row(i, row, frame) for i, row in enumerate(bars_in_a_row(sheet.bars))),
+        _supports(sheet.span, runs, frame),
         _span_line(sheet.span, length, frame, foot + 58.0),
     ]
     height = foot + 72.0
@@ -118,27 +166,50 @@ def _body(runs: Sequence[Run], frame: Frame) -> str:
     return path("".join(outline), "concrete") + path("".join(edges), "edge")
 
 
+def _not_rated(runs: Sequence[Run], frame: Frame) -> str:
+    """Hatching over the stretches beside steps, which are not rated."""
+    shapes = []
+    for stretch in disturbed(runs):
+        x0, x1 = (frame.x(min(max(x, 0.0), frame.length)) for x in (stretch.start, stretch.end))
+        shapes.append(
+            closed_path([(x0, frame.top), (x1, frame.top), (x1, frame.bottom), (x0, frame.bottom)])
+        )
+    return path("".join(shapes), "unrated") if shapes else ""
+
+
 def _heights(ring: Ring) -> list[float]:
     """Heights of the corners of an outline: soffit, edges between, top."""
     return sorted({round(z, 1) for _, z in ring})
 
 
-def _bar_layer(index: int, bars: Bars, frame: Frame) -> str:
-    x0, x1, z = frame.x(bars.start), frame.x(bars.end), frame.z(bars.z)
-    toward = 9.0 if bars.z > frame.depth / 2.0 else -9.0
+def _bar_row(index: int, row: Sequence[Bars], frame: Frame) -> str:
+    """Bars of one layer, with the pieces of them that follow a taper."""
+    first, last = row[0], row[-1]
+    lines = "".join(
+        segment(frame.x(bars.start), frame.z(bars.z), frame.x(bars.end), frame.z(bars.z))
+        for bars in row
+    )
+    ends = ((frame.x(first.start), first, first.start_anchor),
+            (frame.x(last.end), last, last.end_anchor))  # fmt: skip
     hooks = "".join(
-        segment(x, z, x, z + toward)
-        for x, anchor in ((x0, bars.start_anchor), (x1, bars.end_anchor))
+        segment(x, frame.z(bars.z), x, frame.z(bars.z) + _toward(bars, frame))
+        for x, bars, anchor in ends
         if anchor is Anchor.HOOK
     )
     dots = "".join(
-        circle(x, z, 2.0, "anchored")
-        for x, anchor in ((x0, bars.start_anchor), (x1, bars.end_anchor))
+        circle(x, frame.z(bars.z), 2.0, "anchored")
+        for x, bars, anchor in ends
         if anchor is Anchor.ANCHORED
     )
     share = 0.06 + 0.17 * (index % 5)
-    named = label(x0 + (x1 - x0) * share, z + 3.2, bar_words(bars), "bar-name")
-    return path(segment(x0, z, x1, z) + hooks, "bar") + dots + named
+    x = frame.x(first.start + (last.end - first.start) * share)
+    z = frame.z(next(b.z for b in row if frame.x(b.end) >= x - 1e-6))
+    return path(lines + hooks, "bar") + dots + label(x, z + 3.2, bar_words(first), "bar-name")
+
+
+def _toward(bars: Bars, frame: Frame) -> float:
+    """Which way a hook is drawn: into the section."""
+    return 9.0 if bars.z > frame.depth / 2.0 else -9.0
 
 
 def bar_words(bars: Bars) -> str:
@@ -172,15 +243,17 @@ def _stirrup_set(stirrups: Stirrups, frame: Frame, foot: float) -> str:
     return path(lines, "stirrup") + path(ends, "measure") + label((x0 + x1) / 2, y + 11, words, "m")
 
 
-def _supports(span: Span | None, frame: Frame) -> str:
+def _supports(span: Span | None, runs: Sequence[Run], frame: Frame) -> str:
     if span is None:
         return ""
     ends = ((span.start, span.start_support, -1.0), (span.end, span.end_support, 1.0))
-    return "".join(_support(frame.x(x), support, side, frame) for x, support, side in ends)
+    return "".join(_support(x, support, side, runs, frame) for x, support, side in ends)
 
 
-def _support(x: float, support: Support, side: float, frame: Frame) -> str:
-    y = frame.bottom
+def _support(place: float, support: Support, side: float, runs: Sequence[Run], frame: Frame) -> str:
+    """A support under the soffit that the beam has there, or a wall that holds its end."""
+    x, soffit = frame.x(place), min(z for _, z in outline_of(runs, place).rings[0])
+    y = frame.z(soffit)
     half = support.bearing / 2.0 * frame.along
     if support.kind == "free":
         return ""
@@ -204,11 +277,12 @@ def _span_line(span: Span | None, length: float, frame: Frame, y: float) -> str:
 
 
 class _Loads:
-    """The loads on one face, in bands from the beam outwards."""
+    """The loads on one face, in bands from the beam outwards; self weight has one band."""
 
     def __init__(self, loads: Sequence[Load], hung: bool) -> None:
         lines = [load for load in loads if load.kind == "line"]
-        self.lines = sorted(lines, key=lambda load: load.case == SELF)
+        weight = [load for load in lines if load.case == SELF]
+        self.bands = [[load] for load in lines if load.case != SELF] + [weight] * bool(weight)
         self.singles = [load for load in loads if load.kind != "line"]
         self.hung = hung
         self.rows = _rows(self.singles)
@@ -216,23 +290,25 @@ class _Loads:
     @property
     def height(self) -> float:
         """Drawing units that the loads take."""
-        bands = min(len(self.lines), MOST_BANDS) * BAND + (12.0 if self.more else 0.0)
+        bands = min(len(self.bands), MOST_BANDS) * BAND + (12.0 if self.more else 0.0)
         singles = ARROW + 11.0 * max(self.rows, default=0) + 12.0 if self.singles else 0.0
         return bands + singles + (6.0 if self.hung and (bands or singles) else 0.0)
 
     @property
     def more(self) -> int:
         """Line loads that are only in the table."""
-        return max(len(self.lines) - MOST_BANDS, 0)
+        return max(len(self.bands) - MOST_BANDS, 0)
 
     def drawn(self, frame: Frame) -> str:
         """Return the loads as SVG."""
         away = 1.0 if self.hung else -1.0
         base = frame.bottom + 6.0 if self.hung else frame.top
-        peak = max((abs(v) for load in self.lines for v in load.values), default=0.0) or 1.0
+        peak = max((abs(v) for band in self.bands for load in band for v in load.values),
+                   default=0.0) or 1.0  # fmt: skip
         parts = []
-        for load in self.lines[:MOST_BANDS]:
-            parts.append(_line_load(load, frame, base, away, peak))
+        for band in self.bands[:MOST_BANDS]:
+            parts += [_line_load(load, frame, base, away, peak) for load in band]
+            parts.append(_band_name(band, frame, base, away))
             base += away * BAND
         if self.more:
             loads = "line load" if self.more == 1 else "line loads"
@@ -268,10 +344,19 @@ def _line_load(load: Load, frame: Frame, base: float, away: float, peak: float) 
     near = base + away * 1.5
     high0, high1 = (near + away * (1.5 + 8.0 * abs(v) / peak) for v in load.values)
     shape = closed_path(thinned([(x0, near), (x0, high0), (x1, high1), (x1, near)], 0.0))
-    words = label(
-        (x0 + x1) / 2.0, base + away * (17.0 if away > 0.0 else 13.5), _named(load), "load-name"
-    )
-    return path(shape, "load") + words
+    return path(shape, "load")
+
+
+def _band_name(band: Sequence[Load], frame: Frame, base: float, away: float) -> str:
+    """What the loads of one band are: one load by its words, several by their least and most."""
+    x0, x1 = frame.x(band[0].start), frame.x(band[-1].end)
+    words = _named(band[0])
+    if len(band) > 1:
+        values = [value for load in band for value in load.values]
+        both = dict.fromkeys(show(value, "line_load") for value in (min(values), max(values)))
+        words = f"{band[0].case}: {' to '.join(both)}"
+    y = base + away * (17.0 if away > 0.0 else 13.5)
+    return label((x0 + x1) / 2.0, y, words, "load-name")
 
 
 def _named(load: Load) -> str:

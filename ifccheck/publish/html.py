@@ -2,36 +2,29 @@
 
 from __future__ import annotations
 
-import base64
-import hashlib
 import math
-from collections import Counter
 from collections.abc import Iterable, Iterator, Mapping, Sequence
 from dataclasses import dataclass
 
 from markupsafe import Markup
 
-from ifccheck.beam import Combination, OutOfScope, Verdict
-from ifccheck.publish import tint
+from ifccheck.beam import Combination, Verdict
+from ifccheck.publish.page import MOST_NAMED, Tally, dress, figures, left_out, proportion
 from ifccheck.publish.plan import framing_plans
 from ifccheck.publish.report import Assumption, CaseSummary, Counts, Report
 from ifccheck.publish.rows import (
-    GAUGE,
-    GAUGE_END,
     Row,
     governing_titles,
-    storeys_in_order,
+    storey_names,
     table_rows,
 )
 from ifccheck.publish.sheet_html import (
-    SHEETS_PER_BLOCK,
     Block,
     foot_line,
     packed,
     sheet_html,
 )
-from ifccheck.publish.svg import number
-from ifccheck.publish.templates import asset, template
+from ifccheck.publish.templates import template
 from ifccheck.publish.tint import BANDS
 from ifccheck.publish.words import (
     CAUTIONS,
@@ -41,36 +34,32 @@ from ifccheck.publish.words import (
 )
 
 WORST = 10
-MOST_NAMED = 12
-"""Marks named in a list before the rest are only counted."""
 
 
 def render(report: Report) -> str:
     """Return the summary as one HTML file."""
     rows = table_rows(report)
     numbers = {row.key: row.number for row in rows}
-    style, script = _style(), asset("page.js")
+    tallies = _tallies(report.counts)
     return template("page.html.j2").render(
-        policy=_policy(style, script),
-        style=Markup(style),
-        script=Markup(script),
+        **dress(),
         model=report.model,
         title_block=_title_block(report),
         counts=report.counts,
-        tallies=_tallies(report.counts),
-        proportion=Markup(_proportion(report.counts)),
+        tallies=tallies,
+        proportion=Markup(proportion([(t.swatch, t.count) for t in tallies[:-1]])),
         covered=covered_phrases(report.ratings.values()),
         worst=[row for row in rows if row.utilisation][:WORST],
         cases=[_case(case, report, numbers) for case in report.cases],
-        plans=_plans(report, numbers),
+        plans=figures(framing_plans(report.model, report.ratings, numbers)),
         legend=[(name, words) for _, name, words in BANDS]
         + [("over", "falls short"), ("none", "not rated")],
-        storeys=storeys_in_order(report),
+        storeys=storey_names(report.model),
         verdicts=[str(verdict) for verdict in Verdict],
         governing=governing_titles(report),
         rows=rows,
         unrated=_unrated(report, rows),
-        out_of_scope=_out_of_scope(report.model.out_of_scope),
+        out_of_scope=left_out(report.model.out_of_scope),
         assumptions=[_assumption(a, report) for a in report.assumptions],
         doubts=[remark for remark in report.remarks if remark.kind == "doubt"],
         remarks=[remark for remark in report.remarks if remark.kind != "doubt"],
@@ -80,28 +69,7 @@ def render(report: Report) -> str:
         cautions=CAUTIONS,
         foot=foot_line(report),
         blocks=_blocks(report, rows),
-        sheets_per_block=SHEETS_PER_BLOCK,
     )
-
-
-def _policy(style: str, script: str) -> str:
-    """Nothing from anywhere, and of script and style only the very texts in the file."""
-    return (
-        f"default-src 'none'; script-src {_fingerprint(script)}; style-src {_fingerprint(style)};"
-        " base-uri 'none'; form-action 'none'"
-    )
-
-
-def _fingerprint(text: str) -> str:
-    digest = base64.b64encode(hashlib.sha256(text.encode()).digest()).decode("ascii")
-    return f"'sha256-{digest}'"
-
-
-def _style() -> str:
-    """The style sheet, with what it shares with the drawings and the table."""
-    widths = "".join(f".w{i}{{width:{i}px}}" for i in range(GAUGE + 1))
-    full = f":root{{--gauge:{GAUGE}px;--one:{GAUGE / GAUGE_END:.0f}px}}"
-    return tint.style() + full + widths + asset("page.css")
 
 
 def _title_block(report: Report) -> list[tuple[str, str]]:
@@ -130,37 +98,13 @@ def _sources(report: Report) -> list[tuple[str, str]]:
     ]
 
 
-@dataclass(frozen=True, slots=True)
-class _Tally:
-    kind: str
-    swatch: str
-    count: int
-    words: str
-
-
-def _tallies(counts: Counts) -> list[_Tally]:
+def _tallies(counts: Counts) -> list[Tally]:
     return [
-        _Tally("falls-short", "over", counts.falls_short, "falls short"),
-        _Tally("not-rated", "none", counts.not_rated, "not rated"),
-        _Tally("adequate", "u3", counts.adequate, "adequate"),
-        _Tally("out", "out", counts.out_of_scope, "out of scope"),
+        Tally("falls-short", "over", counts.falls_short, "falls short"),
+        Tally("not-rated", "none", counts.not_rated, "not rated"),
+        Tally("adequate", "u3", counts.adequate, "adequate"),
+        Tally("out", "out", counts.out_of_scope, "out of scope"),
     ]
-
-
-def _proportion(counts: Counts) -> str:
-    """The beams in scope as one bar."""
-    parts, left = [], 0.0
-    kinds = (("over", counts.falls_short), ("none", counts.not_rated), ("u3", counts.adequate))
-    for kind, count in kinds:
-        width = 600.0 * count / max(counts.in_scope, 1)
-        if count:
-            parts.append(
-                f'<rect class="{kind} part" x="{number(left)}" y="1" width="{number(width)}"'
-                ' height="12"/>'
-            )
-        left += width
-    shape = 'viewBox="0 0 600 14" preserveAspectRatio="none"'
-    return f'<svg class="proportion" {shape} aria-hidden="true">{"".join(parts)}</svg>'
 
 
 @dataclass(frozen=True, slots=True)
@@ -195,22 +139,6 @@ def _case(case: CaseSummary, report: Report, numbers: Mapping[str, int]) -> _Cas
 
 
 @dataclass(frozen=True, slots=True)
-class _Plan:
-    storey: str
-    elevation: float | None
-    beams: int
-    not_drawn: tuple[str, ...]
-    svg: Markup
-
-
-def _plans(report: Report, numbers: Mapping[str, int]) -> list[_Plan]:
-    return [
-        _Plan(plan.storey, plan.elevation, plan.beams, plan.not_drawn, Markup(plan.svg))
-        for plan in framing_plans(report.model, report.ratings, numbers)
-    ]
-
-
-@dataclass(frozen=True, slots=True)
 class _Unrated:
     text: str
     cure: str
@@ -223,25 +151,6 @@ def _unrated(report: Report, rows: Sequence[Row]) -> list[_Unrated]:
     groups = reason_groups(report.ratings[row.key] for row in rows)
     return [
         _Unrated(group.text, group.cure, [by_key[key] for key in group.beams]) for group in groups
-    ]
-
-
-@dataclass(frozen=True, slots=True)
-class _OutOfScope:
-    reason: str
-    count: int
-    items: list[tuple[str, int]]
-
-
-def _out_of_scope(members: Iterable[OutOfScope]) -> list[_OutOfScope]:
-    groups: dict[str, Counter[str]] = {}
-    for member in members:
-        where = f", {member.storey}" if member.storey else ""
-        words = f"{member.name or member.guid}{where}: {member.evidence}"
-        groups.setdefault(member.reason, Counter())[words] += 1
-    return [
-        _OutOfScope(reason, found.total(), sorted(found.items()))
-        for reason, found in sorted(groups.items())
     ]
 
 

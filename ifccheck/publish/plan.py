@@ -49,6 +49,22 @@ class Plan:
 
 
 @dataclass(frozen=True, slots=True)
+class Look:
+    """How a beam is shown in a plan, and what is said of it."""
+
+    kind: str
+    """Class of its tint"""
+    told: str
+    """Said when it is pointed at"""
+    words: str = ""
+    """With its mark"""
+    always: bool = False
+    """Whether the words are shown even where they lie over other beams"""
+    more: tuple[str, ...] = ()
+    """Said once all marks stand: the first that still finds room"""
+
+
+@dataclass(frozen=True, slots=True)
 class _Shape:
     """A beam seen from above [mm]."""
 
@@ -78,9 +94,17 @@ class _Sheet:
 def framing_plans(
     model: Model, ratings: Mapping[str, Rating], rows: Mapping[str, int]
 ) -> tuple[Plan, ...]:
+    """Return a plan for every storey with beams, tinted by how much each beam is used."""
+    looks = {beam.key: _rated(beam, ratings[beam.key]) for beam in model.beams}
+    return storey_plans(model, looks, rows)
+
+
+def storey_plans(
+    model: Model, looks: Mapping[str, Look], rows: Mapping[str, int]
+) -> tuple[Plan, ...]:
     """Return a plan for every storey with beams, from the lowest up.
 
-    ``rows`` gives the number of the table row that each beam links to.
+    ``looks`` tells how each beam is shown, ``rows`` the number of the table row that it links to.
     """
     members = _Members(model)
     heights = {storey.name: storey.elevation for storey in model.storeys}
@@ -89,8 +113,16 @@ def framing_plans(
         by_storey.setdefault(beam.storey, []).append(beam)
     ordered = sorted(by_storey, key=lambda name: (heights.get(name, math.inf), name))
     return tuple(
-        _plan(name, heights.get(name), by_storey[name], members, ratings, rows) for name in ordered
+        _plan(name, heights.get(name), by_storey[name], members, looks, rows) for name in ordered
     )
+
+
+def _rated(beam: Beam, rating: Rating) -> Look:
+    told, used = f"{beam.mark}: {verdict_phrase(rating)}", ""
+    if not math.isnan(rating.utilisation):
+        used = utilisation_words(rating.utilisation)
+        told += f", utilisation {used}"
+    return Look(band(rating), told, used, always=falls_short(rating.utilisation))
 
 
 class _Members:
@@ -152,7 +184,7 @@ def _plan(
     elevation: float | None,
     beams: Sequence[Beam],
     members: _Members,
-    ratings: Mapping[str, Rating],
+    looks: Mapping[str, Look],
     rows: Mapping[str, int],
 ) -> Plan:
     shapes = [shape for beam in beams if (shape := _shape(beam, members.hulls))]
@@ -162,12 +194,10 @@ def _plan(
         return Plan(name, elevation, "", len(beams), missing)
     others = members.near(*_heights(shapes))
     sheet = _fitted([p for s in shapes for ring in s.whole for p in ring])
-    shapes.sort(key=lambda s: DRAW_ORDER.index(band(ratings[s.beam.key])))
+    shapes.sort(key=lambda s: DRAW_ORDER.index(looks[s.beam.key].kind))
     parts = [path(closed_path(map(sheet.place, hull)), kind) for kind, hull in others]
-    parts += [
-        _beam(shape, sheet, ratings[shape.beam.key], rows[shape.beam.key]) for shape in shapes
-    ]
-    parts += _marks(shapes, sheet, ratings)
+    parts += [_beam(shape, sheet, looks[shape.beam.key], rows[shape.beam.key]) for shape in shapes]
+    parts += _marks(shapes, sheet, looks)
     parts.append(_scale_bar(sheet))
     title = escape(plain(f"Framing plan of {name or 'no storey'}"), quote=True)
     svg = (
@@ -201,8 +231,13 @@ def _breadth(outline: Outline) -> Place:
 
 def _stem(outline: Outline) -> Place:
     """Breadth of the lower half, which a flange above does not widen."""
-    middle = sum(max(zs) + min(zs) for zs in [[z for _, z in outline.rings[0]]]) / 2.0
-    across = [y for y, z in outline.rings[0] if z < middle]
+    ring = outline.rings[0]
+    heights = [z for _, z in ring]
+    middle = (max(heights) + min(heights)) / 2.0
+    across = [y for y, z in ring if z < middle]
+    for (y0, z0), (y1, z1) in zip(ring, (*ring[1:], ring[0]), strict=True):
+        if (z0 < middle) != (z1 < middle):
+            across.append(y0 + (y1 - y0) * (middle - z0) / (z1 - z0))
     return min(across), max(across)
 
 
@@ -233,17 +268,15 @@ def _fitted(places: Sequence[Place]) -> _Sheet:
     return _Sheet(scale, min(eastings), max(northings), (WIDTH - wide * scale) / 2.0, height)
 
 
-def _beam(shape: _Shape, sheet: _Sheet, rating: Rating, row: int) -> str:
-    kind = band(rating)
+def _beam(shape: _Shape, sheet: _Sheet, look: Look, row: int) -> str:
+    kind = look.kind
     stem = "".join(closed_path(map(sheet.place, ring)) for ring in shape.stem)
     whole = "".join(closed_path(map(sheet.place, ring)) for ring in shape.whole)
-    told = f"{shape.beam.mark}: {verdict_phrase(rating)}"
-    if not math.isnan(rating.utilisation):
-        told += f", utilisation {utilisation_words(rating.utilisation)}"
     flange = path(whole, f"{kind} flange") if whole != stem else ""
     dashes = path(_along(shape, sheet), "dashes") if kind == "over" else ""
+    told = escape(plain(look.told))
     return (
-        f'<a href="#r{row}" data-row="{row}" tabindex="-1"><title>{escape(plain(told))}</title>'
+        f'<a href="#r{row}" data-row="{row}" tabindex="-1"><title>{told}</title>'
         f"{flange}{path(stem, f'{kind} body')}{dashes}"
         f"{path(_start_mark(shape, sheet), 'start')}</a>"
     )
@@ -289,15 +322,16 @@ def _half_width(shape: _Shape) -> float:
     return breadth / 2.0
 
 
-def _marks(shapes: Sequence[_Shape], sheet: _Sheet, ratings: Mapping[str, Rating]) -> Iterator[str]:
-    """Mark and utilisation beside each beam, or the mark alone, where there is room."""
+def _marks(shapes: Sequence[_Shape], sheet: _Sheet, looks: Mapping[str, Look]) -> Iterator[str]:
+    """Mark and words beside each beam, or the mark alone, where there is room."""
     strokes = {s.beam.key: Stroke(*_ends(s, sheet), _half_width(s) * sheet.scale) for s in shapes}
     labels = Labels(list(strokes.values()))
     for shape in reversed(shapes):
-        used = ratings[shape.beam.key].utilisation
-        words = "" if math.isnan(used) else utilisation_words(used)
-        mark, stroke = plain(shape.beam.mark), strokes[shape.beam.key]
-        yield labels.set(stroke, mark, words, always=falls_short(used))
+        look, stroke = looks[shape.beam.key], strokes[shape.beam.key]
+        yield labels.set(stroke, plain(shape.beam.mark), look.words, always=look.always)
+    for shape in reversed(shapes):
+        more = [plain(text) for text in looks[shape.beam.key].more]
+        yield labels.add(strokes[shape.beam.key], more)
 
 
 def _scale_bar(sheet: _Sheet) -> str:

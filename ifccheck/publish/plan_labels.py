@@ -59,12 +59,21 @@ class Labels:
         across = [(each, False) for each in whole]
         alone = [([mark], True), ([mark], False)]
         for texts, clear_of_beams in clear + (across + alone if always else alone + across):
-            if spots := self._room(stroke, texts, clear_of_beams):
-                for spot in spots:
-                    self._take(spot)
-                placed = zip(spots, texts, strict=True)
-                return "".join(label(*s.middle, text, "mark", s.turn) for s, text in placed)
+            if placed := self._placed(stroke, texts, clear_of_beams):
+                return placed
         return ""
+
+    def add(self, stroke: Stroke, words: Sequence[str]) -> str:
+        """Return the first of several texts that finds room beside a beam, clear of all others."""
+        return next(filter(None, (self._placed(stroke, [text], True) for text in words)), "")
+
+    def _placed(self, stroke: Stroke, texts: Sequence[str], clear_of_beams: bool) -> str:
+        """Texts beside a beam, each in room of its own; nothing where one finds none."""
+        spots = self._room(stroke, texts, clear_of_beams)
+        for spot in spots:
+            self._take(spot)
+        placed = zip(spots, texts, strict=False)
+        return "".join(label(*spot.middle, text, "mark", spot.turn) for spot, text in placed)
 
     def _room(self, stroke: Stroke, texts: Sequence[str], clear_of_beams: bool) -> list[_Spot]:
         """A spot for each of the texts, or none at all."""

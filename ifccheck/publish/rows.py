@@ -6,7 +6,7 @@ import math
 from collections.abc import Iterable, Mapping
 from dataclasses import dataclass
 
-from ifccheck.beam import Beam
+from ifccheck.beam import Beam, Model
 from ifccheck.publish.report import Report, ratings_in_order
 from ifccheck.publish.tint import band
 from ifccheck.publish.words import (
@@ -21,10 +21,10 @@ GAUGE, GAUGE_END = 60, 1.25
 """Length of the bar of a utilisation [px], and the utilisation at its end."""
 
 
-def storeys_in_order(report: Report) -> list[str]:
+def storey_names(model: Model) -> list[str]:
     """Return the names of the storeys with beams, from the lowest up."""
-    heights = {storey.name: storey.elevation for storey in report.model.storeys}
-    names = {beam.storey for beam in report.model.beams}
+    heights = {storey.name: storey.elevation for storey in model.storeys}
+    names = {beam.storey for beam in model.beams}
     return sorted(names, key=lambda name: (heights.get(name, math.inf), name))
 
 
@@ -70,7 +70,7 @@ class Row:
 
 def table_rows(report: Report) -> list[Row]:
     """Return the rows of the table of beams, the worst first."""
-    storeys = {name: i for i, name in enumerate(storeys_in_order(report))}
+    storeys = {name: i for i, name in enumerate(storey_names(report.model))}
     governing = {title: i for i, title in enumerate(governing_titles(report))}
     ordered = ratings_in_order(report.ratings[beam.key] for beam in report.model.beams)
     return [_row(i, rating, report, storeys, governing) for i, rating in enumerate(ordered)]

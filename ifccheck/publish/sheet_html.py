@@ -12,7 +12,7 @@ from itertools import islice, zip_longest
 
 from markupsafe import Markup
 
-from ifccheck.beam import SELF, Anchor, Bars, Given, Load, Stirrups
+from ifccheck.beam import SELF, Anchor, Bars, Beam, Given, Load, Stirrups
 from ifccheck.publish.arising import (
     ShareRow,
     reaction_rows,
@@ -111,7 +111,13 @@ def foot_line(report: Report) -> str:
 
 
 def _facts(sheet: Sheet) -> list[tuple[str, str]]:
-    beam, span = sheet.beam, sheet.span
+    span = sheet.span
+    standing = [("span", span_words(sheet)), ("supports", support_words(span) if span else "")]
+    return beam_facts(sheet.beam, standing)
+
+
+def beam_facts(beam: Beam, more: Iterable[tuple[str, str]]) -> list[tuple[str, str]]:
+    """Return what identifies a beam, with more before its GlobalId; nothing that is empty."""
     facts = [
         ("name", beam.name if beam.name != beam.mark else ""),
         ("tag", beam.tag if beam.tag != beam.mark else ""),
@@ -120,8 +126,7 @@ def _facts(sheet: Sheet) -> list[tuple[str, str]]:
         ("section", section_words(beam)),
         ("material", beam.material),
         ("length", quantity_words(beam.length, "length") if beam.length else ""),
-        ("span", span_words(sheet)),
-        ("supports", support_words(span) if span else ""),
+        *more,
         ("GlobalId", beam.key),
     ]
     return [(name, value) for name, value in facts if value]
@@ -148,7 +153,7 @@ def _state(state: LimitStateRating) -> _State:
         counted=state.counted,
         over=state.counted and falls_short(state.utilisation),
         used=utilisation_words(state.utilisation),
-        x=_metres(state.position),
+        x=metres(state.position),
         demand=demand,
         resistance=number_and_unit(state.resistance, state.demand_unit)[0],
         unit=unit,
@@ -165,7 +170,7 @@ class _Safe:
 
 
 def _safe_load(safe: SafeLoad) -> _Safe:
-    by = f"{safe.governing} at x = {_metres(safe.position)} m" if safe.governing else ""
+    by = f"{safe.governing} at x = {metres(safe.position)} m" if safe.governing else ""
     return _Safe(safe.case, factor_words(safe.factor), safe.text, by)
 
 
@@ -236,13 +241,15 @@ class _Load:
 
 
 def _load(load: Load) -> _Load:
-    end = _metres(load.end) if load.kind == "line" else ""
+    end = metres(load.end) if load.kind == "line" else ""
     face = "hung from the soffit" if load.face == "bottom" else "top"
-    return _Load(load.case, load_words(load), _metres(load.start), end, face, load.origin)
+    return _Load(load.case, load_words(load), metres(load.start), end, face, load.origin)
 
 
 @dataclass(frozen=True, slots=True)
-class _Steel:
+class SteelRow:
+    """One line of a table of reinforcement."""
+
     name: str
     area: str
     height: str
@@ -254,23 +261,24 @@ class _Steel:
     origin: str
 
 
-def _steel(sheet: Sheet) -> list[_Steel]:
+def _steel(sheet: Sheet) -> list[SteelRow]:
     """The steel with the yield that it was rated with, else with the one that was read."""
     bars = zip_longest(sheet.bars, sheet.bar_yield[: len(sheet.bars)])
     stirrups = zip_longest(sheet.stirrups, sheet.stirrup_yield[: len(sheet.stirrups)])
     return [
-        *(_bar_row(each, rated or each.yield_strength) for each, rated in bars),
-        *(_stirrup_row(each, rated or each.yield_strength) for each, rated in stirrups),
+        *(bar_row(each, rated or each.yield_strength) for each, rated in bars),
+        *(stirrup_row(each, rated or each.yield_strength) for each, rated in stirrups),
     ]
 
 
-def _bar_row(bars: Bars, steel: Given | None) -> _Steel:
-    return _Steel(
+def bar_row(bars: Bars, steel: Given | None) -> SteelRow:
+    """Return bars with a yield strength as a line of a table."""
+    return SteelRow(
         name=bar_words(bars),
         area=f"{bars.count * bars.area:.0f}",
         height=f"{bars.z:.0f}",
-        start=_metres(bars.start),
-        end=_metres(bars.end),
+        start=metres(bars.start),
+        end=metres(bars.end),
         ends=_ends(bars.start_anchor, bars.end_anchor),
         strength=f"{steel.value:.0f}" if steel else "not known",
         assumed=bool(steel and steel.assumed),
@@ -285,14 +293,15 @@ def _ends(start: Anchor, end: Anchor) -> str:
     return f"{start} – {end}"
 
 
-def _stirrup_row(stirrups: Stirrups, steel: Given | None) -> _Steel:
+def stirrup_row(stirrups: Stirrups, steel: Given | None) -> SteelRow:
+    """Return stirrups with a yield strength as a line of a table."""
     legs = stirrups.legs
-    return _Steel(
+    return SteelRow(
         name=stirrup_words(stirrups),
         area="not known" if legs is None else f"{legs * stirrups.leg_area:.0f}",
         height="",
-        start=_metres(stirrups.start),
-        end=_metres(stirrups.end),
+        start=metres(stirrups.start),
+        end=metres(stirrups.end),
         ends="closed" if stirrups.closed else "open",
         strength=f"{steel.value:.0f}" if steel else "not known",
         assumed=bool(steel and steel.assumed),
@@ -314,5 +323,6 @@ def _basis(item: BasisItem) -> _Basis:
     return _Basis(item.label, value, unit, item.source, item.assumed)
 
 
-def _metres(place: float) -> str:
+def metres(place: float) -> str:
+    """Return a place along a beam in m, without its unit."""
     return f"{place / 1000.0:.2f}" if math.isfinite(place) else "–"

@@ -1,10 +1,9 @@
-"""What is said on the terminal: the closing table, a survey, the standards."""
+"""What is said on the terminal: the closing table, the standards."""
 
 from __future__ import annotations
 
 import math
-from collections import Counter
-from collections.abc import Iterable, Iterator, Mapping, Sequence
+from collections.abc import Iterable, Iterator, Sequence
 from pathlib import Path
 from typing import TYPE_CHECKING
 
@@ -12,8 +11,7 @@ from rich.console import Console, Group, RenderableType
 from rich.table import Table
 from rich.text import Text
 
-from ifccheck.beam import Beam, Model, Verdict
-from ifccheck.publish.quantities import quantity_words
+from ifccheck.beam import Beam, Verdict
 from ifccheck.publish.report import Report, ratings_in_order
 from ifccheck.publish.terminal_parts import CAUTION, SHORT, Cell, Terminal
 from ifccheck.publish.words import (
@@ -21,7 +19,6 @@ from ifccheck.publish.words import (
     covered_phrases,
     factor_words,
     reason_groups,
-    section_words,
     utilisation_words,
 )
 from ifccheck.rating import Rating
@@ -119,61 +116,6 @@ def _reason(group: ReasonGroup, to: Terminal) -> Text:
     if group.cure:
         words.append("\n").append_text(to.text(f"  to rate them: {group.cure}", style="dim"))
     return words
-
-
-def survey_table(
-    model: Model, missing: Mapping[str, Sequence[str]], console: Console
-) -> RenderableType:
-    """Return what a model holds and, by key of the beam, what a rating would lack."""
-    to = Terminal(console)
-    groups: dict[tuple[str, ...], list[Beam]] = {}
-    for beam in model.beams:
-        groups.setdefault(_survey_group(beam), []).append(beam)
-    order = {storey.name: storey.elevation for storey in model.storeys}
-    rows = []
-    for group, beams in sorted(groups.items(), key=lambda g: (order.get(g[0][0], math.inf), g[0])):
-        lacking = Counter(text for beam in beams for text in missing.get(beam.key, ()))
-        told = "; ".join(_lacking(text, count, len(beams)) for text, count in lacking.items())
-        rows.append((*group, str(len(beams)), told))
-    table = to.table(
-        ("storey", "section", "material", "concrete", "reinforcement", ">beams", "missing"), rows,
-        title=f"{model.file_name} ({model.schema}): {len(model.beams)} beams in scope",
-    )  # fmt: skip
-    return Group(table, *_survey_tail(model, missing, to))
-
-
-def _survey_group(beam: Beam) -> tuple[str, ...]:
-    strength = beam.concrete_strength
-    return (
-        beam.storey or "no storey",
-        section_words(beam) or "not read",
-        beam.material or "unknown",
-        quantity_words(strength.value, "stress") if strength else "not stated",
-        ", ".join(source.source for source in beam.reinforcement) or "none found",
-    )
-
-
-def _lacking(text: str, count: int, of: int) -> str:
-    return text if count == of else f"{text} ({count} of {of})"
-
-
-def _survey_tail(
-    model: Model, missing: Mapping[str, Sequence[str]], to: Terminal
-) -> list[RenderableType]:
-    ready = sum(1 for beam in model.beams if not missing.get(beam.key))
-    tail: list[RenderableType] = [
-        to.text(
-            f"{ready} of {len(model.beams)} beams lack nothing that the model or brief can give."
-        )
-    ]
-    left_out = Counter(member.reason for member in model.out_of_scope)
-    if left_out:
-        told = ", ".join(f"{count} {reason}" for reason, count in sorted(left_out.items()))
-        tail.append(to.text(f"Out of scope: {told}."))
-    for remark in model.remarks:
-        style = SHORT if remark.kind == "doubt" else ""
-        tail.append(to.text(f"{remark.kind}: {remark.text}", style=style))
-    return tail
 
 
 def standards_table(

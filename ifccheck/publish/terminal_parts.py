@@ -6,7 +6,7 @@ from collections.abc import Iterable, Sequence
 
 from rich.box import SIMPLE_HEAD
 from rich.cells import cell_len
-from rich.console import Console
+from rich.console import Console, Group
 from rich.table import Table
 from rich.text import Text
 
@@ -43,19 +43,42 @@ class Terminal:
 
         A column whose name starts with ``>`` is set to the right.
         """
-        cells = [
-            [self.text(cell) if isinstance(cell, str) else cell for cell in row] for row in rows
-        ]
+        return self._tables(columns, [(title, rows)])[0]
+
+    def tables(
+        self, columns: Sequence[str], titled: Iterable[tuple[str, Iterable[Sequence[Cell]]]]
+    ) -> Group:
+        """Tables with the same columns, each as wide in all of them."""
+        return Group(*self._tables(columns, titled))
+
+    def _tables(
+        self, columns: Sequence[str], titled: Iterable[tuple[str, Iterable[Sequence[Cell]]]]
+    ) -> list[Table]:
+        filled = [(title, [self._cells(row) for row in rows]) for title, rows in titled]
         heads = [self.text(name.lstrip(">")) for name in columns]
+        everything = [heads, *(row for _, rows in filled for row in rows)]
+        widths = column_widths(everything, self.width - 2 * len(columns))
+        return [self._table(columns, heads, widths, title, rows) for title, rows in filled]
+
+    def _cells(self, row: Sequence[Cell]) -> list[Text]:
+        return [self.text(cell) if isinstance(cell, str) else cell for cell in row]
+
+    def _table(
+        self,
+        columns: Sequence[str],
+        heads: Sequence[Text],
+        widths: Sequence[int],
+        title: str,
+        rows: Iterable[Sequence[Text]],
+    ) -> Table:
         table = Table(
             box=SIMPLE_HEAD, title=self.text(title) if title else None, title_justify="left",
             title_style="bold", pad_edge=False, padding=(0, 1, 0, 0),
         )  # fmt: skip
-        widths = column_widths([heads, *cells], self.width - 2 * len(columns))
         for name, head, width in zip(columns, heads, widths, strict=True):
             justify = "right" if name.startswith(">") else "left"
             table.add_column(head, justify=justify, width=width, overflow="fold")  # type: ignore[arg-type]
-        for row in cells:
+        for row in rows:
             table.add_row(*row)
         return table
 

@@ -32,6 +32,15 @@ CAUTIONS = (
     " from it, and no load may be put on it on the strength of this summary.",
 )
 
+CAUTIONS_OF_A_SURVEY = (
+    "This page is an aid for a licensed engineer. It rates nothing: that nothing is missing of a"
+    " beam says nothing of what the beam can carry.",
+    "It tells what the program read, which may differ from what the modeller meant and from what"
+    " was built. Compare it with the drawings and the structure.",
+    "What is doubtful is used all the same where a rule decides it on the safe side; the sheet of"
+    " the rating says how.",
+)
+
 
 def plain(text: str) -> str:
     """Return a text on one line that can be shown anywhere: what cannot be shown becomes U+FFFD.
@@ -68,8 +77,11 @@ def section_words(beam: Beam) -> str:
 
 
 def _outline_words(outline: Outline) -> str:
-    if outline.name:
-        return outline.name
+    return outline.name or outline_size(outline)
+
+
+def outline_size(outline: Outline) -> str:
+    """Return the greatest width and height of an outline [mm]."""
     ys, zs = zip(*outline.rings[0], strict=True)
     return f"{max(ys) - min(ys):.0f} × {max(zs) - min(zs):.0f}"
 
@@ -109,14 +121,24 @@ def factor_words(factor: float) -> str:
     return "not limited" if math.isinf(factor) else show_ratio(factor)
 
 
+NO_LOAD = "no load assigned"
+
 CURES = {
     "reactions not included": "put what rests on them in the loads, then write loads_complete ="
     " true under [[beams]]",
-    "no load assigned": "reach them with an entry of [[loads]], or write unloaded = true under"
-    " [[beams]]",
+    NO_LOAD: "reach them with an entry of [[loads]], or write unloaded = true under [[beams]]",
     "supports unknown": "write an entry of [[supports]] that names them",
 }
 """What lets a beam be rated, for reasons that the brief can settle; by the words before ":"."""
+
+
+def head_of(text: str) -> str:
+    """Return the words of a reason before what it names.
+
+    >>> head_of("reactions not included: T-111 (IfcBeam)")
+    'reactions not included'
+    """
+    return text.partition(":")[0]
 
 
 NAMED = 3
@@ -138,7 +160,7 @@ def reason_groups(ratings: Iterable[Rating]) -> list[ReasonGroup]:
     found: dict[str, dict[str, list[str]]] = {}
     for rating in ratings:
         for reason in rating.reasons:
-            head = reason.text.partition(":")[0]
+            head = head_of(reason.text)
             group = head if head in CURES else reason.text
             found.setdefault(group, {}).setdefault(reason.text, []).append(rating.beam)
     groups = [_reason_group(group, texts) for group, texts in found.items()]

@@ -110,14 +110,20 @@ def _limit_states(batch: Batch) -> list[tuple[LimitStateRating, ...]]:
     ]
 
 
-def _missing(subject: Subject) -> str:
-    """The inputs that no one gives, for a limit state that needs one of them."""
+def unstated_stirrups(subject: Subject) -> list[str]:
+    """Return what no one says of a beam's stirrups."""
     unstated = sorted({z.designation or "no size" for z in subject.stirrups if not z.legs})
     found = []
     if not subject.stirrups_known:
         found.append("no source says whether there are stirrups")
     if unstated:
         found.append(f"the legs of the stirrups are not stated ({', '.join(unstated)})")
+    return found
+
+
+def _missing(subject: Subject) -> str:
+    """The inputs that no one gives, for a limit state that needs one of them."""
+    found = unstated_stirrups(subject)
     if math.isnan(subject.aggregate_size.value):
         found.append("the aggregate size is not given (defaults.aggregate_size)")
     return "; ".join(found) or "an input is not a number"

@@ -4,7 +4,6 @@ from __future__ import annotations
 
 from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
-from functools import lru_cache
 from typing import Any
 
 import numpy as np
@@ -12,7 +11,7 @@ import numpy as np
 from ifccheck.analysis.loads import LoadTable, join_loads, load_table, self_weight_lines
 from ifccheck.analysis.spans import FREE, SpanTable, span_table
 from ifccheck.analysis.stations import SAME_PLACE, StationTable
-from ifccheck.beam import SELF, Anchor, Case, Outline, Run
+from ifccheck.beam import SELF, Anchor, Case
 from ifccheck.mechanics.arrays import (
     ANCHOR_FULL,
     ANCHOR_HOOK,
@@ -23,9 +22,20 @@ from ifccheck.mechanics.arrays import (
     Members,
     Stations,
 )
-from ifccheck.mechanics.overhangs import overhangs
-from ifccheck.mechanics.width_profile import pack_strips, strips_of
+from ifccheck.mechanics.width_profile import pack_strips
 from ifccheck.rating.covers import column, cover_distances
+from ifccheck.rating.disturbed import disturbed
+from ifccheck.rating.runs import (
+    DRAWN,
+    RunTable,
+    Section,
+    along_axis,
+    chords_at,
+    profile_of,
+    run_table,
+    sections_at,
+    weighed_parts,
+)
 from ifccheck.rating.subject import Subject
 
 END_COVER = 100.0
@@ -40,19 +50,6 @@ _ANCHOR = {
 
 
 @dataclass(frozen=True, slots=True)
-class RunTable:
-    """The runs of all beams, one row each (R), sorted by beam and start."""
-
-    beam: Ints
-    start: Floats
-    end: Floats
-    section: Ints
-    """Row of Members.strips"""
-    area: Floats
-    """[mm2]"""
-
-
-@dataclass(frozen=True, slots=True)
 class StirrupTable:
     """The stirrup zones of all beams, one row each (Z)."""
 
@@ -63,6 +60,34 @@ class StirrupTable:
     area: Floats
     """All legs [mm2]; nan where the legs are not stated"""
     yield_strength: Floats
+
+
+@dataclass(frozen=True, slots=True)
+class Stretches:
+    """Stretches of beams, one row each (D), in any order."""
+
+    beam: Ints
+    start: Floats
+    end: Floats
+
+    def hold(self, beam: Ints, x: Floats) -> Bools:
+        """Whether each place of a beam lies within one of its stretches (N)."""
+        held = np.zeros(x.shape, dtype=np.bool_)
+        for row, start, end in zip(self.beam, self.start, self.end, strict=True):
+            held |= (beam == row) & (x > start + SAME_PLACE) & (x < end - SAME_PLACE)
+        return held
+
+
+def disturbed_stretches(subjects: Sequence[Subject]) -> Stretches:
+    """The stretches beside steps of all beams."""
+    rows = [
+        (beam, stretch.start, stretch.end)
+        for beam, subject in enumerate(subjects)
+        if len(subject.beam.runs) > 1 or subject.beam.runs[0].outline_end is not None
+        for stretch in disturbed(subject.beam.runs)
+    ]
+    beam, start, end = np.array(rows, dtype=np.float64).reshape(-1, 3).T
+    return Stretches(beam.astype(np.intp), start, end)
 
 
 @dataclass(frozen=True, slots=True)
@@ -88,32 +113,29 @@ class Frame:
     faces: Floats
     """(B, 2)"""
     loads: LoadTable
+    self_case: int
+    """Row of the case that self weight makes"""
     checked: Floats
     """Where checks begin and end on each beam [mm] (B, 2)"""
+    disturbed: Stretches
+    """Where nothing is checked"""
     side_loaded: Bools
     """Members frame into the side of the beam: its loads do not compress its top (B)"""
 
 
 def frame_of(subjects: Sequence[Subject], cases: Sequence[Case]) -> Frame:
     """The beams as tables."""
-    runs, sections = run_table([subject.runs for subject in subjects])
+    follows = [subject.reinforcement_source != DRAWN for subject in subjects]
+    runs, sections = run_table([subject.runs for subject in subjects], follows)
     spans = span_table([subject.span for subject in subjects])
     row_of_case = {case.name: row for row, case in enumerate(cases)}
     row_of_beam = {subject.beam.key: row for row, subject in enumerate(subjects)}
     stated = load_table(
         [load for subject in subjects for load in subject.loads], row_of_beam, row_of_case
     )
-    body, _ = run_table([subject.weighed for subject in subjects])
-    first, last = _first_of(body.beam), _last_of(body.beam)
-    weight = self_weight_lines(
-        beam=body.beam,
-        case=row_of_case[SELF],
-        start=np.where(first, np.minimum(body.start, spans.start[body.beam]), body.start),
-        end=np.where(last, np.maximum(body.end, spans.end[body.beam]), body.end),
-        area_start=body.area,
-        area_end=body.area,
-        unit_weight=np.array([subject.unit_weight.value for subject in subjects])[body.beam],
-    )
+    unit_weights = np.array([subject.unit_weight.value for subject in subjects])
+    body, _ = run_table([subject.weighed for subject in subjects], follows)
+    weight = _self_weight(body, spans, row_of_case[SELF], unit_weights)
     members = members_of(subjects, sections)
     lengths = np.array([subject.beam.length for subject in subjects])
     return Frame(
@@ -124,8 +146,25 @@ def frame_of(subjects: Sequence[Subject], cases: Sequence[Case]) -> Frame:
         spans=spans,
         faces=np.array([subject.faces for subject in subjects]),
         loads=join_loads(stated, weight),
+        self_case=row_of_case[SELF],
         checked=checked_stretch(members, spans, lengths),
+        disturbed=disturbed_stretches(subjects),
         side_loaded=np.array([subject.side_loaded for subject in subjects]),
+    )
+
+
+def _self_weight(runs: RunTable, spans: SpanTable, case: int, unit_weights: Floats) -> LoadTable:
+    """The weight of all runs; that of the first and last reaches as far as the span does."""
+    row, start, end, area_start, area_end = weighed_parts(runs)
+    beam = runs.beam[row]
+    return self_weight_lines(
+        beam=beam,
+        case=case,
+        start=np.where(_first_of(beam), np.minimum(start, spans.start[beam]), start),
+        end=np.where(_last_of(beam), np.maximum(end, spans.end[beam]), end),
+        area_start=area_start,
+        area_end=area_end,
+        unit_weight=unit_weights[beam],
     )
 
 
@@ -139,46 +178,9 @@ def _last_of(beam: Ints) -> Bools:
     return np.append(beam[1:] != beam[:-1], True)[: beam.size]
 
 
-@dataclass(frozen=True, slots=True)
-class Profile:
-    """What is measured of an outline."""
-
-    strips: Floats
-    overhangs: tuple[float, float, float]
-    """To the left, to the right, and the thickness of that flange [mm]"""
-    area: float
-    """[mm2]"""
-
-
-Section = tuple[Outline, Outline | None]
-"""An outline, and what it was before openings were taken off it where there are such"""
-
-
-@lru_cache(maxsize=4096)  # few outlines make most buildings
-def profile_of(section: Section) -> Profile:
-    """Measure an outline."""
-    outline, whole = section
-    strips = strips_of(outline.rings)
-    area = float(np.sum((strips[:, 1] - strips[:, 0]) * (strips[:, 2] + strips[:, 3]) / 2.0))
-    return Profile(strips, overhangs(outline.rings, whole.rings if whole else None), area)
-
-
-def run_table(runs_of_beams: Sequence[Sequence[Run]]) -> tuple[RunTable, tuple[Section, ...]]:
-    """Number the distinct outlines and list where each beam has which."""
-    rows: dict[Section, int] = {}
-    table = [
-        (beam, run.start, run.end, rows.setdefault((run.outline, run.whole), len(rows)))
-        for beam, runs in enumerate(runs_of_beams)
-        for run in runs
-    ]
-    beam, start, end, section = (np.array(column) for column in zip(*table, strict=True))
-    areas = np.array([profile_of(section).area for section in rows])
-    return RunTable(beam, start, end, section, areas[section]), tuple(rows)
-
-
 def members_of(subjects: Sequence[Subject], sections: Sequence[Section]) -> Members:
     """The beams as arrays, one row each."""
-    profiles = [profile_of(section) for section in sections]
+    profiles = [profile_of(*section) for section in sections]
     flanges = np.array([profile.overhangs for profile in profiles])
     return Members(
         concrete_strength=np.array([s.concrete_strength.value for s in subjects]),
@@ -213,7 +215,11 @@ def _layers(subjects: Sequence[Subject]) -> dict[str, Any]:
 
     return {
         "layer_height": packed(bar.z for bar in bars),
-        "layer_area": packed(bar.count * bar.area for bar in bars),
+        "layer_area": packed(
+            bar.count * bar.area * along_axis(subject, bar)
+            for subject in subjects
+            for bar in subject.bars
+        ),
         "layer_bar_area": packed((bar.area for bar in bars), 1.0),
         "layer_diameter": packed((bar.diameter for bar in bars), 1.0),
         "layer_yield": packed((g.value for s in subjects for g in s.bar_yield), 400.0),
@@ -249,28 +255,38 @@ def loss_table(subjects: Sequence[Subject]) -> LossTable:
     return LossTable(columns[0].astype(np.intp), *columns[1:])
 
 
-def make_station_arrays(beam: Ints, x: Floats, side: Ints, frame: Frame) -> Stations:
+def make_station_arrays(
+    frame: Frame, beam: Ints, x: Floats, side: Ints
+) -> tuple[Members, Stations]:
     """Look up section, stirrups and openings at every station.
 
     Parameters
     ----------
+    frame
+        Sections and stirrups along the beams, and the faces of their supports.
     beam, x, side
         The stations (N).
-    frame
-        What there is along the beams.
+
+    Returns
+    -------
+    tuple
+        The members, with a section for every station in a taper, and the stations.
     """
-    runs, faces = frame.runs, frame.faces
     area, spacing, strength = _stirrups_at(beam, x, side, frame.zones)
-    return Stations(
+    runs = frame.runs
+    row = _row_at(beam, x, side, runs.beam, runs.start)
+    members, section = sections_at(frame.members, runs, row, x)
+    return members, Stations(
         beam=beam,
-        section=runs.section[_row_at(beam, x, side, runs.beam, runs.start)],
+        section=section,
         shear_loss=_losses_at(beam, x, side, frame.losses),
         x=x,
         side=side,
         stirrup_area=area,
         stirrup_spacing=spacing,
         stirrup_yield=strength,
-        inside=_between(x, faces[beam]),
+        inside=_between(x, frame.faces[beam]),
+        chords=chords_at(runs, row),
     )
 
 

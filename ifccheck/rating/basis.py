@@ -4,15 +4,19 @@ from __future__ import annotations
 
 import math
 from collections.abc import Iterator, Sequence
+from dataclasses import replace
 from functools import cache, lru_cache
 
 import numpy as np
 
 from ifccheck.beam import Bars, Flange, Given, Opening, Outline, Stirrups, Support
 from ifccheck.mechanics.arrays import Ints
+from ifccheck.mechanics.outlines import bounds
+from ifccheck.notation import bars_in_a_row
 from ifccheck.rating.batch import Batch
 from ifccheck.rating.elements import first_greatest
 from ifccheck.rating.results import BasisItem, LimitStateRating
+from ifccheck.rating.runs import outline_of
 from ifccheck.rating.subject import Subject
 from ifccheck.result_sets import Measure
 from ifccheck.units import show
@@ -102,9 +106,8 @@ def _support(name: str, label: str, support: Support) -> BasisItem:
 
 
 def _steel(subject: Subject) -> list[BasisItem]:
-    middle = _depth(subject) / 2.0
-    lower = [bar for bar in subject.bars if bar.z < middle]
-    upper = [bar for bar in subject.bars if bar.z >= middle]
+    lower = [bar for bar in subject.bars if bar.z < _middle(subject, bar)]
+    upper = [bar for bar in subject.bars if bar.z >= _middle(subject, bar)]
     source = subject.reinforcement_source
     return [
         BasisItem("BottomBars", "bars in the lower half", _bars_text(lower), "text", source),
@@ -140,28 +143,53 @@ def _box_text(box: Flange | Opening) -> str:
     )
 
 
-def _depth(subject: Subject) -> float:
-    return _height(subject.beam.runs[0].outline)
+def _middle(subject: Subject, bar: Bars) -> float:
+    """Middle of the section's depth halfway along a bar [mm]."""
+    return _middle_of(outline_of(subject.beam.runs, (bar.start + bar.end) / 2.0))
 
 
 @lru_cache(maxsize=4096)
-def _height(outline: Outline) -> float:
-    return max(z for _, z in outline.rings[0])
+def _middle_of(outline: Outline) -> float:
+    _, _, soffit, top = bounds(outline.rings)
+    return (soffit + top) / 2.0
 
 
 def _bars_text(bars: Sequence[Bars]) -> str:
-    texts = [
-        f"{bar.count}-{bar.designation or show(bar.diameter, 'dimension')} at z = "
-        f"{show(bar.z, 'dimension')}, x = {show(bar.start, 'length')} to {show(bar.end, 'length')}"
-        for bar in sorted(bars, key=lambda bar: bar.z)
-    ]
-    return "; ".join(texts) or "none"
+    rows = sorted(bars_in_a_row(bars), key=lambda row: row[0].z)
+    return "; ".join(map(_row_text, rows)) or "none"
+
+
+def _row_text(row: Sequence[Bars]) -> str:
+    first, last = row[0], row[-1]
+    heights = dict.fromkeys(
+        show(z, "dimension") for z in (min(b.z for b in row), max(b.z for b in row))
+    )
+    return (
+        f"{first.count}-{first.designation or show(first.diameter, 'dimension')} at z = "
+        f"{' to '.join(heights)}, x = {show(first.start, 'length')} to {show(last.end, 'length')}"
+    )
 
 
 def _stirrups_text(subject: Subject) -> str:
     if not subject.stirrups_known:
         return "not stated"
-    return "; ".join(_zone_text(zone) for zone in subject.stirrups) or "none"
+    return "; ".join(_zone_text(zone) for zone in _in_a_row(subject.stirrups)) or "none"
+
+
+def _in_a_row(zones: Sequence[Stirrups]) -> list[Stirrups]:
+    """Zones that go on alike made one, whatever the heights of their stirrups."""
+    found: list[Stirrups] = []
+    for zone in zones:
+        before = found[-1] if found else None
+        if before is not None and before.end == zone.start and _alike(before) == _alike(zone):
+            found[-1] = replace(before, end=zone.end)
+        else:
+            found.append(zone)
+    return found
+
+
+def _alike(zone: Stirrups) -> tuple[object, ...]:
+    return zone.legs, zone.designation, zone.diameter, zone.spacing
 
 
 def _zone_text(zone: Stirrups) -> str:

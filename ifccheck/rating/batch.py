@@ -140,8 +140,8 @@ def rate_frame(
     """Rate beams of which the tables are made already: numbers alone."""
     critical = _critical_sections(subjects, frame, standard)
     effects, stations = _effects(frame, critical, cases, combinations)
-    arrays = make_station_arrays(stations.beam, stations.x, stations.side, frame)
-    prepared = standard.prepare(frame.members, arrays, options)
+    arrays = make_station_arrays(frame, stations.beam, stations.x, stations.side)
+    prepared = standard.prepare(*arrays, options)
     rated = tuple(row for row, case in enumerate(cases) if case.rated)
     acting = demands(
         effects,
@@ -149,7 +149,8 @@ def rate_frame(
         rated,
         unbounded=frame.side_loaded,
     )
-    elements = distinct_elements(acting, stations.beam)
+    skipped = frame.disturbed.hold(stations.beam, stations.x)
+    elements = distinct_elements(acting, stations.beam, skipped)
     evaluations = [
         (quick, quick.basis(prepared).take(elements.station)) for quick in standard.quick
     ]
@@ -233,8 +234,13 @@ def _critical_sections(subjects: Sequence[Subject], frame: Frame, standard: Stan
     beams = len(subjects)
     beam = np.repeat(np.arange(beams), 2)
     side = np.tile([1, -1], beams)
-    at_faces = make_station_arrays(beam, frame.faces.ravel(), side, frame)
-    distance = standard.critical_distance(frame.members, at_faces).reshape(beams, 2)
+    at_faces = make_station_arrays(frame, beam, frame.faces.ravel(), side)
+    distance = standard.critical_distance(*at_faces)
+    if frame.runs.beam.size > beams or frame.runs.tapers:
+        reach = np.where(np.isnan(distance), 0.0, distance)
+        there = make_station_arrays(frame, beam, frame.faces.ravel() + reach * side, side)
+        distance = np.minimum(distance, standard.critical_distance(*there))
+    distance = distance.reshape(beams, 2)
     critical = frame.faces + distance * np.array([1.0, -1.0])
     direct = np.array([subject.direct for subject in subjects])
     held = np.stack([frame.spans.start_kind, frame.spans.end_kind], axis=-1) != FREE
@@ -248,7 +254,8 @@ def _concentrated(frame: Frame, critical: Floats) -> Bools:
     """Whether a concentrated load or moment lies between the face and the section (B, 2).
 
     A line load is one where it is shorter than twice the distance between them, or than a
-    quarter of the distance between the faces: it comes down as a strut of its own.
+    quarter of the distance between the faces: it comes down as a strut of its own. Self weight,
+    which is cut at every run, is none.
     """
     found = np.zeros(critical.shape, dtype=np.bool_)
     loads, faces = frame.loads, frame.faces
@@ -259,6 +266,7 @@ def _concentrated(frame: Frame, critical: Floats) -> Bools:
         (1, loads.end >= critical[loads.beam, 1]),
     ):
         lump = (loads.kind != LINE) | (loads.end - loads.start < short[loads.beam, end])
+        lump &= loads.case != frame.self_case
         found[loads.beam[near & lump], end] = True
     return found
 
@@ -304,6 +312,8 @@ def _fixed_places(frame: Frame, critical: Floats) -> list[Places]:
         (runs.beam, runs.end, True),
         (row, m.layer_start[row, layer], True),
         (row, m.layer_end[row, layer], True),
+        (frame.disturbed.beam, frame.disturbed.start, False),
+        (frame.disturbed.beam, frame.disturbed.end, False),
         (zones.beam, zones.start, True),
         (zones.beam, zones.end, True),
         (losses.beam, losses.start, True),
@@ -339,13 +349,25 @@ def _envelope(
         shear.max(axis=0),
         shear.min(axis=0),
         {
-            state.name: resistance[_worst_elements(utilisation, elements)]
+            state.name: _at_stations(
+                resistance[_worst_elements(utilisation, elements)], elements, stations
+            )
             for state, (utilisation, resistance) in zip(standard.limit_states, found, strict=True)
         },
     )
 
 
+def _at_stations(values: Floats, elements: Elements, stations: int) -> Floats:
+    """Values of the stations that have elements at all stations (N), nan at the others."""
+    if values.size == stations:
+        return values
+    spread = np.full(stations, np.nan)
+    spread[elements.stations] = values
+    return spread
+
+
 def _worst_elements(utilisation: Floats, elements: Elements) -> Ints:
-    """Row of the greatest utilisation of each station (N), one that is not known before all."""
+    """Row of the greatest utilisation of each station that has elements, one that is not known
+    before all."""
     known = np.where(np.isnan(utilisation), np.inf, utilisation)
     return first_greatest(known, elements.first_of_station)[1]

@@ -3,13 +3,14 @@
 from __future__ import annotations
 
 from collections import defaultdict
-from collections.abc import Iterable, Sequence
+from collections.abc import Iterable, Iterator, Sequence
 
 import numpy as np
 
-from ifccheck.beam import Outline
+from ifccheck.beam import Outline, Run
 from ifccheck.mechanics.arrays import Floats, Ints
 from ifccheck.mechanics.spacing import distance_to_surface, nearest_neighbour
+from ifccheck.rating.runs import outline_at
 from ifccheck.rating.subject import Subject
 
 
@@ -57,19 +58,30 @@ def _bars_of_outlines(
     subjects: Sequence[Subject], start: Floats, end: Floats, counts: Ints
 ) -> dict[Outline, list[Ints]]:
     """Rows of the bars that run through each outline; one that runs through none is told by the
-    first of its beam."""
+    first of its beam. In a taper a bar runs through those at the ends of what it has of it."""
     found: dict[Outline, list[Ints]] = defaultdict(list)
     first = 0
     for subject, count in zip(subjects, counts.tolist(), strict=True):
         bars = np.arange(first, first + count)
         first += count
         for run in subject.runs:
-            meets = (start[bars] < run.end) & (end[bars] > run.start)
-            found[run.outline].append(bars[meets])
+            meets = bars[(start[bars] < run.end) & (end[bars] > run.start)]
+            for outline, rows in _within(run, meets, start, end):
+                found[outline].append(rows)
             if run is subject.runs[0]:
                 beyond = (end[bars] <= run.start) | (start[bars] >= subject.runs[-1].end)
                 found[run.outline].append(bars[beyond])
     return found
+
+
+def _within(run: Run, bars: Ints, start: Floats, end: Floats) -> Iterator[tuple[Outline, Ints]]:
+    """The outlines of a run with the bars that lie in each."""
+    if run.outline_end is None:
+        yield run.outline, bars
+        return
+    for row in bars:
+        for place in (max(run.start, start[row]), min(run.end, end[row])):
+            yield outline_at(run, place), np.array([row])
 
 
 def _spacing(y: Floats, z: Floats, start: Floats, end: Floats, counts: Ints) -> Floats:

@@ -30,8 +30,10 @@ class Elements:
     """Index into the flattened (combinations, arrangements, stations)"""
     station: Ints
     beam: Ints
+    stations: Ints
+    """The stations that have elements, in their order"""
     first_of_station: Ints
-    """First element of each station (N)"""
+    """First element of each of those"""
     first_of_beam: Ints
     """First element of each beam (B)"""
     total: Floats
@@ -53,7 +55,7 @@ def demand_of(numbers: Floats, can_sag: Bools, can_hog: Bools) -> Demand:
     return Demand(moment, shear, critical_shear, peak_sagging, peak_hogging, can_sag, can_hog)
 
 
-def distinct_elements(acting: Demands, beam: Ints) -> Elements:
+def distinct_elements(acting: Demands, beam: Ints, skipped: Bools) -> Elements:
     """Elements of a batch without those that equal an earlier arrangement.
 
     Parameters
@@ -62,9 +64,11 @@ def distinct_elements(acting: Demands, beam: Ints) -> Elements:
         Demand of every arrangement (C, A, N).
     beam
         Beam of each station (N), ascending from 0, every beam with a station.
+    skipped
+        Stations at which nothing is evaluated (N); not all of a beam's.
     """
     shape = acting.total.moment.shape
-    kept = _kept((acting.total, *acting.shares)).reshape(-1, shape[-1])
+    kept = (_kept((acting.total, *acting.shares)) & ~skipped).reshape(-1, shape[-1])
     station, row = np.nonzero(np.ascontiguousarray(kept.T))
     combination, element = row // shape[1], row * shape[-1] + station
 
@@ -77,11 +81,13 @@ def distinct_elements(acting: Demands, beam: Ints) -> Elements:
             row[:] = at(getattr(demand, name))
         return rows
 
+    first = np.flatnonzero(np.diff(station, prepend=-1))
     return Elements(
         element=element,
         station=station,
         beam=beam[station],
-        first_of_station=np.flatnonzero(np.diff(station, prepend=-1)),
+        stations=station[first],
+        first_of_station=first,
         first_of_beam=np.flatnonzero(np.diff(beam[station], prepend=-1)),
         total=numbers(acting.total),
         shares=tuple(numbers(share) for share in acting.shares),

@@ -50,6 +50,8 @@ def with_turns(found: Factors, growth: Growth, standard: Standard, options: Opti
     moving = np.isfinite(found.factor) & (found.factor > 0.0)
     for _ in range(MOST_ROUNDS):
         beam, x = _turns(found.factor, moving, growth)
+        rated = ~growth.frame.disturbed.hold(beam, x)
+        beam, x = beam[rated], x[rated]
         if not beam.size:
             return found
         lower = _factors_at(beam, x, found, growth, standard, options)
@@ -84,10 +86,10 @@ def _factors_at(
         frame.spans, frame.loads, stations, len(growth.effects.cases.moment), deflections=False
     )
     acting = demands(combine(cases, growth.factors), np.arange(x.size), (growth.case,))
-    arrays = make_station_arrays(beam, x, side, frame)
+    arrays = make_station_arrays(frame, beam, x, side)
     beams, row = np.unique(beam, return_inverse=True)
-    elements = distinct_elements(acting, row)
-    prepared = standard.prepare(frame.members, arrays, options)
+    elements = distinct_elements(acting, row, np.zeros(x.size, dtype=np.bool_))
+    prepared = standard.prepare(*arrays, options)
     evaluations = [
         (quick, quick.basis(prepared).take(elements.station))
         for quick in standard.quick

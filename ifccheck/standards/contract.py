@@ -153,5 +153,8 @@ class Standard:
     """Remarks on a Prepared, such as minimum reinforcement."""
     basis: Callable[[Any], dict[str, Floats]]
     """Named arrays (N) that the basis of a rating prints, such as effective depths."""
+    least_slenderness: float
+    """Clear span over depth below which beam theory does not hold"""
+    slenderness_clause: str
     not_checked: tuple[str, ...] = ()
     """What a reader might expect to be checked and is not: "torsion", "deflection" ..."""

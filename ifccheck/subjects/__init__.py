@@ -2,3 +2,4 @@
 
 from ifccheck.subjects.gathering import Gathered as Gathered
 from ifccheck.subjects.gathering import gather as gather
+from ifccheck.subjects.steel import yield_unknown as yield_unknown

@@ -32,6 +32,7 @@ from ifccheck.frame.openings import Net, net_of
 from ifccheck.frame.reactions import loaded_from_side, unknown_reactions
 from ifccheck.frame.slab_flanges import Asked, counted
 from ifccheck.frame.spans import Standing, stand_alone
+from ifccheck.rating.shape import deep_member, shape_reasons
 from ifccheck.rating.subject import Subject, Unrated
 from ifccheck.standards import Standard
 from ifccheck.subjects.concrete import Concrete, concrete_of
@@ -126,6 +127,8 @@ def _one(
     if standing and steel:
         slab = counted(beam, _asked(beam, sources, statement, concrete), loads)
         net = net_of(beam, standing, loads, steel, slab)
+        rated = net.body.runs if net.body else beam.runs
+        findings.reasons += deep_member(rated, standing.faces, sources.standard)
     findings.take(net)
     if standing is None or steel is None or any(reason.blocking for reason in findings.reasons):
         return Unrated(beam, _distinct(findings.reasons), tuple(findings.remarks))
@@ -171,6 +174,9 @@ def _judge_standing(
         overhang = span_reason(statement, beam, supports)
         findings.reasons += [overhang] if overhang else standing.reasons
         findings.remarks += standing.remarks
+        findings.reasons += shape_reasons(
+            beam.runs, standing.span, standing.faces, sources.standard
+        )
 
 
 def _asked(beam: Beam, sources: Sources, statement: BeamStatement, concrete: Concrete) -> Asked:

@@ -94,8 +94,13 @@ def _yields(
     """Yield strength of each set: the brief's statement, the model's, the brief's default."""
     given = [each for bar in steel if (each := stated or bar.yield_strength or default)]
     if len(given) < len(steel):
-        findings.refuse(f"yield strength of the {what} unknown: neither model nor brief gives one")
+        findings.refuse(yield_unknown(what))
         return ()
     for assumed in dict.fromkeys([each for each in given if each.assumed]):
         findings.assume(f"yield strength of the {what}", assumed)
     return tuple(given)
+
+
+def yield_unknown(what: str) -> str:
+    """Return the reason for which bars, or stirrups, without a known yield are not rated."""
+    return f"yield strength of the {what} unknown: neither model nor brief gives one"

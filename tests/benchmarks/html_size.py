@@ -1,4 +1,4 @@
-"""How large the summary of 2,000 made-up beams is, and how long it takes to make and to open.
+"""How large the pages of 2,000 made-up beams are, and how long they take to make and to open.
 
 Run from the repository: ``python -m tests.benchmarks.html_size``.
 """
@@ -14,8 +14,10 @@ from ifccheck.publish.html import render
 from ifccheck.publish.json import ratings_json
 from ifccheck.publish.property_sets import result_sets
 from ifccheck.publish.sheet_html import foot_line, sheet_html
+from ifccheck.publish.survey_html import render_survey
 from tests.chromium import browser, find_browser
 from tests.reports_made_up import made_up_report
+from tests.surveys_made_up import survey_of
 
 
 def main() -> None:
@@ -37,6 +39,11 @@ def main() -> None:
         made = make(report)  # type: ignore[operator]
         print(f"{name}: {time.perf_counter() - started:.2f} s, {len(made)} long")
     open_in_browser(html)
+    started = time.perf_counter()
+    page = render_survey(survey_of(report.model, {}))
+    taken = time.perf_counter() - started
+    print(f"survey: {taken:.2f} s, {taken / beams * 1e3:.2f} ms a beam, {len(page) / 1e6:.1f} MB")
+    open_in_browser(page)
 
 
 def open_in_browser(html: str) -> None:

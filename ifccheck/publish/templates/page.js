@@ -176,10 +176,10 @@
   const filter = () => {
     const value = Object.fromEntries(new FormData(form));
     const named = pattern(value.mark);
-    const from = value.from === "" ? -Infinity : Number(value.from);
-    const to = value.to === "" ? Infinity : Number(value.to);
-    const bounded = value.from !== "" || value.to !== "";
-    const factor = value.factor === undefined || value.factor === "" ? NaN : Number(value.factor);
+    const from = value.from ? Number(value.from) : -Infinity;
+    const to = value.to ? Number(value.to) : Infinity;
+    const bounded = Boolean(value.from || value.to);
+    const factor = value.factor ? Number(value.factor) : NaN;
     let count = 0;
     for (const row of rows) {
       const used = numberAt(row, 5);

@@ -20,6 +20,9 @@ from ifccheck.standards.csa_a23_3_14.sections import (
 )
 from ifccheck.standards.csa_a23_3_14.shear_check import SHEAR
 
+LEAST_SLENDERNESS = 2.0
+"""Clear span over overall depth below which a flexural member is deep (10.7.1, from memory)"""
+
 LEAST_CLEAR_SPACING = 30.0
 """[mm] (CSA A23.1, 6.6.5.2)"""
 
@@ -103,6 +106,8 @@ STANDARD = Standard(
     quick=QUICK,
     notes=notes,
     basis=basis,
+    least_slenderness=LEAST_SLENDERNESS,
+    slenderness_clause="10.7.1",
     not_checked=(
         "torsion",
         "axial force",

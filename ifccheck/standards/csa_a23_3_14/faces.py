@@ -44,6 +44,8 @@ def take_rows(state: State, rows: Ints | slice) -> State:
     taken: dict[str, Any] = {}
     for item in fields(state):
         value = getattr(state, item.name)
+        if value is None:
+            continue
         nested = hasattr(value, "__dataclass_fields__")
         taken[item.name] = take_rows(value, rows) if nested else value[rows]
     return replace(state, **taken)

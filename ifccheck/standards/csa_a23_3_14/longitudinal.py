@@ -191,7 +191,7 @@ def quick_face(web: Web, demand: Demand, acts: Acting, cracked: Cracked) -> tupl
 def _evaluate(section: Section, demand: Demand) -> tuple[LongitudinalDetails, Floats]:
     web, (shear, cracked) = section.web, evaluate(section, demand)
     with np.errstate(divide="ignore", invalid="ignore", over="ignore"):
-        sides = _both_sides(web, demand, acting(demand), cracked)
+        sides = _both_sides(web, demand, acting(web, demand), cracked)
     governs, (peak, other_peak) = sides.compressed, _peaks(web, demand)
     known = replace(shear, stirrup_term=sides.stirrup_term)
     details = LongitudinalDetails(

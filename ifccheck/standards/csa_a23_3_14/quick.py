@@ -20,7 +20,7 @@ def _evaluate(faces: Faces[Web], demand: Demand) -> list[tuple[Floats, Floats]]:
 
 
 def _evaluate_face(web: Web, demand: Demand) -> tuple[tuple[Floats, Floats], ...]:
-    acts = acting(demand)
+    acts = acting(web, demand)
     cracked = crack(web, acts)
     return (
         shear_check.quick_face(web, acts, cracked),

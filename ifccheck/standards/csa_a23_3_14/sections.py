@@ -11,6 +11,7 @@ from ifccheck.mechanics.arrays import (
     ANCHOR_FULL,
     ANCHOR_HOOK,
     Bools,
+    Chords,
     Floats,
     Ints,
     Members,
@@ -78,6 +79,8 @@ class Prepared:
     """Depth that openings take off both dv [mm]; nan where shear cannot be rated"""
     surroundings: Surroundings
     """Faces and critical sections as seen from each station: critical.surroundings(...)"""
+    chords: Chords | None
+    """How the chords are inclined; None where none is"""
 
     def take(self, rows: Ints) -> Prepared:
         """The same at the given stations; rows may repeat."""
@@ -132,6 +135,7 @@ def prepare(members: Members, stations: Stations, options: Options) -> Prepared:
         beyond_yield=materials.beyond_yield(steel_yield),
         shear_loss=lost,
         surroundings=_surroundings(stations, sagging, hogging, options),
+        chords=stations.chords,
     )
 
 

@@ -37,6 +37,18 @@ class ShearDetails:
     """Vf, at the critical section where that is allowed [N]"""
     own_shear: Floats
     """Shear at the place itself [N]"""
+    shear_of_loads: Floats
+    """Vf before inclined chords count [N]"""
+    upper_rise: Floats
+    """Rise of the upper chord for each mm, positive where it adds to the shear"""
+    lower_rise: Floats
+    """The same of the lower chord"""
+    upper_shear: Floats
+    """Vertical component of the upper chord [N]"""
+    lower_shear: Floats
+    level: Bools
+    """No chord is inclined"""
+    inclined: Bools
     moment: Floats
     """Moment that goes with it [N*mm]"""
     top_in_tension: Bools
@@ -184,14 +196,39 @@ def quick_face(web: Web, acts: Acting, cracked: Cracked) -> tuple[Floats, Floats
 
 def evaluate(section: Section, demand: Demand) -> tuple[ShearDetails, Cracked]:
     """Work out all that the calculation of shear prints, with one face in tension."""
-    acts = acting(demand)
+    acts = acting(section.web, demand)
     with np.errstate(divide="ignore", invalid="ignore", over="ignore"):
         cracked = crack(section.web, acts)
         concrete = _concrete(section.web, cracked)
-        return _details(section, acts, cracked, concrete), cracked
+        details = _details(section, acts, cracked, concrete, _chords(section.web, demand))
+        return details, cracked
 
 
-def _details(section: Section, acts: Acting, cracked: Cracked, concrete: _Concrete) -> ShearDetails:
+def _chords(web: Web, demand: Demand) -> dict[str, Any]:
+    """What the inclination of the chords makes of the shear, by the names of the details."""
+    none = np.zeros(demand.shear.shape)
+    rates = np.zeros((web.shear_depth.size, 2)) if web.chord_rates is None else web.chord_rates
+    adds = np.where(demand.critical_shear * demand.moment < 0.0, -1.0, 1.0)
+    upper, lower = (rates[:, chord] * web.shear_depth * adds for chord in (0, 1))
+    inclined = none + (rates != 0.0).any(axis=1) > 0.0
+    return {
+        "shear_of_loads": np.abs(demand.critical_shear),
+        "upper_rise": none + upper,
+        "lower_rise": none + lower,
+        "upper_shear": upper * np.abs(demand.moment) / web.shear_depth,
+        "lower_shear": lower * np.abs(demand.moment) / web.shear_depth,
+        "level": ~inclined,
+        "inclined": inclined,
+    }
+
+
+def _details(
+    section: Section,
+    acts: Acting,
+    cracked: Cracked,
+    concrete: _Concrete,
+    chords: dict[str, Any],
+) -> ShearDetails:
     web = section.web
     distance = _distance(web, cracked)
     return ShearDetails(
@@ -231,10 +268,10 @@ def _details(section: Section, acts: Acting, cracked: Cracked, concrete: _Concre
         steel_present=cracked.has_steel.astype(np.float64),
         resistance=_resistance(web, cracked, concrete),
         **_methods(section, cracked),
+        **chords,
         beyond_strain=cracked.beyond_strain,
         beyond_simplified=web.beyond_simplified,
         beyond_materials=web.beyond_materials,
-        disturbed=np.isnan(web.shear_loss),
     )
 
 
@@ -246,7 +283,7 @@ def _distance(web: Web, cracked: Cracked) -> Floats:
     return distance
 
 
-def _methods(section: Section, cracked: Cracked) -> dict[str, Bools]:
+def _methods(section: Section, cracked: Cracked) -> dict[str, Any]:
     """Which method and which of its forms holds, by the names of the details."""
     web, effective, plain = section.web, cracked.effective, ~cracked.effective
     simplified = web.simplified
@@ -262,6 +299,7 @@ def _methods(section: Section, cracked: Cracked) -> dict[str, Bools]:
         "general_effective": effective & general,
         "general_plain": plain & general & ~opened,
         "opened": opened,
+        "disturbed": np.isnan(web.shear_loss),
         "opened_general_plain": plain & general & opened,
         "simplified": simplified,
         "simplified_effective": effective & simplified,
@@ -308,12 +346,11 @@ def _evaluate(section: Section, demand: Demand) -> tuple[ShearDetails, Floats]:
 def check(prepared: Prepared, demand: Demand) -> Check:
     """Check shear by 11.3.6.3 or 11.3.6.4 at every station and arrangement."""
     details, utilisation = worse_face(sections(prepared), demand, _evaluate)
-    shear = np.abs(demand.critical_shear)
     return Check(
-        demand=shear,
+        demand=details.shear,
         resistance=details.resistance,
         utilisation=utilisation,
-        outside=outside_of(details, (shear > 0.0) & prepared.inside),
+        outside=outside_of(details, (details.shear != 0.0) & prepared.inside),
         details=details,
     )
 

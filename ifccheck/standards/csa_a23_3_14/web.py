@@ -73,6 +73,9 @@ class Web:
     """Outside the range of 11.3.6.3"""
     beyond_materials: Bools
     """Outside that of clause 8"""
+    chord_rates: Floats | None
+    """Shear that the upper and the lower chord put on the web for each unit of moment, by their
+    inclination [1/mm] (N, 2); None where no chord is inclined"""
 
     @property
     def whole_depth(self) -> Floats:
@@ -81,8 +84,9 @@ class Web:
 
     def take(self, rows: Ints | slice) -> Web:
         """The same at the given stations; rows may repeat."""
-        arrays = (getattr(self, f.name)[rows] for f in fields(self)[1:])
-        return Web(self.top, *arrays)
+        arrays: dict[str, Any] = {f.name: getattr(self, f.name)[rows] for f in fields(self)[1:-1]}
+        rates = None if self.chord_rates is None else self.chord_rates[rows]
+        return Web(self.top, **arrays, chord_rates=rates)
 
 
 def webs(prepared: Prepared) -> Faces[Web]:
@@ -114,10 +118,30 @@ def web(prepared: Prepared, *, top: bool) -> Web:
         other_lever_arm=_lever_arm(other_peak, other),
         beyond_simplified=around.simplified & _beyond_simplified(prepared),
         beyond_materials=_beyond_materials(prepared),
+        chord_rates=_chord_rates(prepared, face, top=top),
         **_cracks(prepared, face),
         **_stirrups(prepared, face),
         **_units(prepared, face),
     )
+
+
+def _chord_rates(prepared: Prepared, face: FaceState, *, top: bool) -> Floats | None:
+    """What inclined chords add to the shear for each unit of moment [1/mm] (N, 2).
+
+    With the moment M, sagging positive, the compression M / dv runs along the concrete's face and
+    the tension along the bars. Equilibrium of the part to the left leaves the web
+    V - M / dv * (rise of the upper chord) + M / dv * (rise of the lower chord).
+    """
+    chords = prepared.chords
+    if chords is None:
+        return None
+    steel = chords.steel_follows.astype(np.float64)
+    upper = -chords.top_rise * (steel if top else 1.0)
+    lower = chords.soffit_rise * (1.0 if top else steel)
+    rises = np.stack([upper, lower], axis=-1)
+    # a level chord adds nothing, also where an opening leaves no known depth
+    rates: Floats = np.where(rises == 0.0, 0.0, rises / face.shear_depth[:, None])
+    return rates
 
 
 def _lever_arm(peak: Floats, face: FaceState) -> Floats:
@@ -220,9 +244,49 @@ class Acting:
     """[N*mm]"""
 
 
-def acting(demand: Demand) -> Acting:
-    """What acts, without its sense."""
-    return Acting(np.abs(demand.critical_shear), np.abs(demand.shear), np.abs(demand.moment))
+def acting(web: Web, demand: Demand) -> Acting:
+    """What acts, without its sense; the shear with what inclined chords put on the web."""
+    if web.chord_rates is None:
+        return Acting(np.abs(demand.critical_shear), np.abs(demand.shear), np.abs(demand.moment))
+    upper, lower = (web.chord_rates[:, chord] * demand.moment for chord in (0, 1))
+    return Acting(
+        with_chords(demand.critical_shear, upper, lower),
+        with_chords(demand.shear, upper, lower),
+        np.abs(demand.moment),
+    )
+
+
+def with_chords(shear: Floats, upper: Floats, lower: Floats) -> Floats:
+    """Shear on the web of a member of varying depth, without its sense.
+
+    max(|V|, |V + Vu|, |V + Vl|, |V + Vu + Vl|): what an inclined chord carries counts where it
+    adds to the shear, and never where it relieves the web.
+
+    Parameters
+    ----------
+    shear
+        V of the loads [N]
+    upper, lower
+        Vertical component of the upper and of the lower chord as it acts on the web [N]
+
+    Returns
+    -------
+    Floats
+        [N]
+
+    Examples
+    --------
+    >>> shear = with_chords(np.array([60e3, 60e3]), np.array([9e3, -9e3]), np.zeros(2))
+    >>> [float(value) for value in shear]
+    [69000.0, 60000.0]
+
+    References
+    ----------
+    CSA A23.3-14, 11.2.4 (number from memory): where the effect is unfavourable it must be taken,
+    and where it is favourable it may be. The component itself is first principles.
+    """
+    both = np.maximum(np.abs(shear), np.abs(shear + upper + lower))
+    return np.maximum(both, np.maximum(np.abs(shear + upper), np.abs(shear + lower)))
 
 
 @dataclass(frozen=True, slots=True)
