@@ -1,16 +1,18 @@
 """The domain: what is known of a beam, its reinforcement, supports and loads.
 
-Frozen dataclasses only: no IFC, no formulas. Inside the program lengths are mm, forces N,
-stresses MPa, moments N*mm and angles rad. Local axes of a beam: x along the axis from its
-start, z up in the vertical plane, y to the left. In a section, z is measured up from the
-soffit and y from the middle of the outline's width.
+Frozen dataclasses, and named tuples of what a model has many thousands of: no IFC, no
+formulas. Inside the program lengths are mm, forces N, stresses MPa, moments N*mm and angles rad.
+Local axes of a beam: x along the axis from its start, z up in the vertical plane, y to the left.
+In a section, z is measured up from the soffit and y from the middle of the outline's width;
+where the section varies, from the lowest soffit and the middle of the first section, so that all
+sections are in one frame.
 """
 
 from __future__ import annotations
 
 from dataclasses import dataclass
 from enum import StrEnum
-from typing import Literal
+from typing import Literal, NamedTuple
 
 from ifccheck.cases import SELF as SELF
 from ifccheck.cases import Case as Case
@@ -54,8 +56,7 @@ class Anchor(StrEnum):
     """Stated or taken as fully anchored: the end is not modelled."""
 
 
-@dataclass(frozen=True, slots=True)
-class Remark:
+class Remark(NamedTuple):
     """Something that the reader of a rating must know of one beam, or of the run (beam None)."""
 
     beam: str | None
@@ -84,8 +85,8 @@ class Given:
 
 @dataclass(frozen=True, slots=True)
 class Axis:
-    """The axis of a beam in the building: origin at the soffit's middle at the start [mm],
-    unit vectors, and the length [mm]."""
+    """The axis of a beam in the building: origin at the soffit's middle at the start [mm] (at the
+    height of the lowest soffit), unit vectors, and the length [mm]."""
 
     origin: Vector
     x: Vector
@@ -107,7 +108,8 @@ class Outline:
 
 @dataclass(frozen=True, slots=True)
 class Run:
-    """A stretch of a beam of one outline, or tapering linearly to ``outline_end``."""
+    """A stretch of a beam of one outline, or tapering linearly to ``outline_end``, each corner of
+    the outline to the like corner of that."""
 
     start: float
     end: float
@@ -361,8 +363,7 @@ class Model:
     """Beams, columns and members that may rest on any beam of their storey"""
 
 
-@dataclass(frozen=True, slots=True)
-class Load:
+class Load(NamedTuple):
     """One load on one beam, vertical and positive downward, in the beam's own x.
 
     line: intensity [N/mm] from ``values[0]`` at ``start`` to ``values[1]`` at ``end``;

@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
 from typing import Literal, NamedTuple
 
 Measure = Literal[
@@ -22,8 +21,7 @@ class ResultProperty(NamedTuple):
     value: str | float | bool | None
 
 
-@dataclass(frozen=True, slots=True)
-class ResultSet:
+class ResultSet(NamedTuple):
     """One property set to be written on one beam."""
 
     step_id: int
@@ -31,3 +29,8 @@ class ResultSet:
     ordinal: int
     name: str
     properties: tuple[ResultProperty, ...]
+
+    @property
+    def identity(self) -> tuple[str, int, str]:
+        """What its GlobalId is made of: unlike that of any other set."""
+        return self.guid, self.ordinal, self.name

@@ -1,16 +1,14 @@
-"""How beams stand: supports, spans, lines, contacts. Frozen dataclasses only; read as part of
+"""How beams stand: supports, spans, lines, contacts. Named tuples only; read as part of
 ``beam``."""
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-from typing import Literal
+from typing import Literal, NamedTuple
 
 SupportKind = Literal["pinned", "fixed", "free"]
 
 
-@dataclass(frozen=True, slots=True)
-class Support:
+class Support(NamedTuple):
     """How one end of a beam stands."""
 
     kind: SupportKind
@@ -19,8 +17,7 @@ class Support:
     source: str
 
 
-@dataclass(frozen=True, slots=True)
-class Span:
+class Span(NamedTuple):
     """A span of a line between two supports; places along x of the line [mm]."""
 
     start: float
@@ -29,16 +26,14 @@ class Span:
     end_support: Support
 
 
-@dataclass(frozen=True, slots=True)
-class Line:
+class Line(NamedTuple):
     """Beams that act as one member, and its spans."""
 
     beams: tuple[str, ...]
     spans: tuple[Span, ...]
 
 
-@dataclass(frozen=True, slots=True)
-class Contact:
+class Contact(NamedTuple):
     """Where another member touches a beam: the stretch of x that it covers."""
 
     beam: str

@@ -8,7 +8,7 @@ nothing, a rating factor inf where the case never governs; nan is not known.
 from __future__ import annotations
 
 import math
-from collections.abc import Iterable, Mapping, Sequence
+from collections.abc import Iterable, Iterator, Mapping, Sequence
 from typing import TYPE_CHECKING
 
 from ifccheck.beam import Beam, Model, Outline, OutOfScope, Span, Verdict
@@ -36,27 +36,33 @@ def ratings_frame(
 
     ``cases`` names rated cases that have columns even where they reach no beam.
     """
-    return _frame(ratings_rows(beams, ratings, spans or {}, cases))
+    import pandas as pd
+
+    return pd.DataFrame(ratings_columns(beams, ratings, spans or {}, cases))
 
 
-def ratings_rows(
+def ratings_columns(
     beams: Sequence[Beam],
     ratings: Mapping[str, Rating],
     spans: Mapping[str, Span],
     cases: Sequence[str],
-) -> list[dict[str, Cell]]:
-    """Return the rows of ``ratings_frame``, for what needs no table; all have the same columns."""
+) -> dict[str, list[Cell]]:
+    """Return the columns of ``ratings_frame``, for what needs no table; none without beams."""
+    if not beams:
+        return {}
+    own = [ratings[beam.key] for beam in beams]
     states = _names(state.name for r in ratings.values() for state in r.limit_states)
     named = _names((*cases, *(safe.case for r in ratings.values() for safe in r.safe_loads)))
-    return [
-        {
-            **_beam_cells(beam, spans.get(beam.key)),
-            **_rating_cells(ratings[beam.key]),
-            **_state_cells(ratings[beam.key], states),
-            **_case_cells(ratings[beam.key], named),
-        }
-        for beam in beams
-    ]
+    return {
+        **_columns(_BEAM, (_beam_cells(beam, spans.get(beam.key)) for beam in beams)),
+        **_columns(_RATING, map(_rating_cells, own)),
+        **_columns([f"utilisation_{name}" for name in states], _state_cells(own, states)),
+        **_columns([f"{c}_{name}" for c in named for name in _CASE], _case_cells(own, named)),
+    }
+
+
+def _columns(names: Sequence[str], rows: Iterable[Sequence[Cell]]) -> dict[str, list[Cell]]:
+    return dict(zip(names, map(list, zip(*rows, strict=True)), strict=True))
 
 
 def run_frame(
@@ -125,7 +131,12 @@ def limit_states_frame(beams: Sequence[Beam], ratings: Mapping[str, Rating]) -> 
 def safe_loads_frame(beams: Sequence[Beam], ratings: Mapping[str, Rating]) -> pd.DataFrame:
     """Return one row per beam and rated case that reaches it."""
     return _frame(
-        {"mark": beam.mark, "key": beam.key, "case": safe.case, **_safe_load_cells(safe)}
+        {
+            "mark": beam.mark,
+            "key": beam.key,
+            "case": safe.case,
+            **dict(zip(_CASE, _safe_load_cells(safe), strict=True)),
+        }
         for beam in beams
         for safe in ratings[beam.key].safe_loads
     )
@@ -186,52 +197,71 @@ def _names(names: Iterable[str]) -> list[str]:
     return list(dict.fromkeys(names))
 
 
-def _beam_cells(beam: Beam, span: Span | None) -> dict[str, Cell]:
+_BEAM = (
+    "model", "mark", "name", "tag", "global_id", "key", "storey", "type", "section", "material",
+    "concrete_strength_MPa", "length_m", "span_m",
+)  # fmt: skip
+
+
+def _beam_cells(beam: Beam, span: Span | None) -> tuple[Cell, ...]:
     strength = beam.concrete_strength
-    return {
-        "model": beam.model,
-        "mark": beam.mark,
-        "name": beam.name,
-        "tag": beam.tag,
-        "global_id": beam.guid,
-        "key": beam.key,
-        "storey": beam.storey,
-        "type": beam.type_name,
-        "section": _sections(beam),
-        "material": beam.material,
-        "concrete_strength_MPa": strength.value if strength else math.nan,
-        "length_m": _metres(beam.length) if beam.axis else math.nan,
-        "span_m": _metres(span.end - span.start) if span else math.nan,
-    }
+    return (
+        beam.model,
+        beam.mark,
+        beam.name,
+        beam.tag,
+        beam.guid,
+        beam.key,
+        beam.storey,
+        beam.type_name,
+        _sections(beam),
+        beam.material,
+        strength.value if strength else math.nan,
+        _metres(beam.length) if beam.axis else math.nan,
+        _metres(span.end - span.start) if span else math.nan,
+    )
 
 
-def _rating_cells(rating: Rating) -> dict[str, Cell]:
-    return {
-        "verdict": str(rating.verdict),
-        "checked": ", ".join(rating.checked),
-        "not_checked": ", ".join(rating.not_checked),
-        "reasons": "; ".join(reason.text for reason in rating.reasons),
-        "utilisation": rating.utilisation,
-        "utilisation_state": utilisation_state(rating.utilisation),
-        **_governing_cells(rating.governing),
-    }
+_RATING = (
+    "verdict", "checked", "not_checked", "reasons", "utilisation", "utilisation_state",
+    "governing", "governing_position_m", "governing_combination", "governing_clause",
+    "governing_demand", "governing_resistance", "governing_unit",
+)  # fmt: skip
 
 
-def _governing_cells(state: LimitStateRating | None) -> dict[str, Cell]:
-    cells = _limit_state_cells(state) if state else {}
-    return {
-        "governing": cells.get("title", ""),
-        "governing_position_m": cells.get("position_m", math.nan),
-        "governing_combination": cells.get("combination", ""),
-        "governing_clause": cells.get("clause", ""),
-        "governing_demand": cells.get("demand", math.nan),
-        "governing_resistance": cells.get("resistance", math.nan),
-        "governing_unit": cells.get("unit", ""),
-    }
+def _rating_cells(rating: Rating) -> tuple[Cell, ...]:
+    return (
+        str(rating.verdict),
+        ", ".join(rating.checked),
+        ", ".join(rating.not_checked),
+        "; ".join([reason.text for reason in rating.reasons]),
+        rating.utilisation,
+        utilisation_state(rating.utilisation),
+        *_governing_cells(rating.governing),
+    )
+
+
+def _governing_cells(state: LimitStateRating | None) -> tuple[Cell, ...]:
+    if state is None:
+        return "", math.nan, "", "", math.nan, math.nan, ""
+    factor, unit = _unit(state)
+    return (
+        state.title,
+        _metres(state.position),
+        state.combination,
+        state.clause,
+        state.demand / factor,
+        state.resistance / factor,
+        unit,
+    )
+
+
+def _unit(state: LimitStateRating) -> tuple[float, str]:
+    return _FOR_PEOPLE.get(state.demand_unit, (1.0, state.demand_unit))
 
 
 def _limit_state_cells(state: LimitStateRating) -> dict[str, Cell]:
-    factor, unit = _FOR_PEOPLE.get(state.demand_unit, (1.0, state.demand_unit))
+    factor, unit = _unit(state)
     return {
         "limit_state": state.name,
         "title": state.title,
@@ -248,33 +278,39 @@ def _limit_state_cells(state: LimitStateRating) -> dict[str, Cell]:
     }
 
 
-def _state_cells(rating: Rating, names: Sequence[str]) -> dict[str, Cell]:
-    used = {state.name: state.utilisation for state in rating.limit_states}
-    return {f"utilisation_{name}": used.get(name, math.nan) for name in names}
+def _state_cells(ratings: Iterable[Rating], names: Sequence[str]) -> Iterator[list[Cell]]:
+    for rating in ratings:
+        used = {state.name: state.utilisation for state in rating.limit_states}
+        yield [used.get(name, math.nan) for name in names]
 
 
-def _case_cells(rating: Rating, cases: Sequence[str]) -> dict[str, Cell]:
-    found = {safe.case: _safe_load_cells(safe) for safe in rating.safe_loads}
-    rated = rating.verdict is not Verdict.NOT_RATED
-    state = "no load of this case" if rated else factor_state(math.nan)
-    blank = {**_safe_load_cells(_NO_LOAD), "factor_state": state}
-    return {
-        f"{case}_{name}": value for case in cases for name, value in found.get(case, blank).items()
-    }
+def _case_cells(ratings: Iterable[Rating], cases: Sequence[str]) -> Iterator[list[Cell]]:
+    blank = _safe_load_cells(_NO_LOAD)
+    for rating in ratings:
+        found = {safe.case: _safe_load_cells(safe) for safe in rating.safe_loads}
+        rated = rating.verdict is not Verdict.NOT_RATED
+        without = (blank[0], "no load of this case", *blank[2:]) if rated else blank
+        yield [cell for case in cases for cell in found.get(case, without)]
 
 
-def _safe_load_cells(safe: SafeLoad) -> dict[str, Cell]:
+_CASE = (
+    "factor", "factor_state", "assigned", "safe_load", "single_load", "single_unit",
+    "limited_by", "limited_at_m",
+)  # fmt: skip
+
+
+def _safe_load_cells(safe: SafeLoad) -> tuple[Cell, ...]:
     factor, unit = _SINGLE_UNITS.get(safe.single_kind, (1.0, ""))
-    return {
-        "factor": safe.factor,
-        "factor_state": factor_state(safe.factor),
-        "assigned": safe.assigned,
-        "safe_load": safe.text,
-        "single_load": safe.single_value / factor,
-        "single_unit": unit if math.isfinite(safe.single_value) else "",
-        "limited_by": safe.governing,
-        "limited_at_m": _metres(safe.position),
-    }
+    return (
+        safe.factor,
+        factor_state(safe.factor),
+        safe.assigned,
+        safe.text,
+        safe.single_value / factor,
+        unit if math.isfinite(safe.single_value) else "",
+        safe.governing,
+        _metres(safe.position),
+    )
 
 
 def utilisation_state(utilisation: float) -> str:

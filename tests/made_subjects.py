@@ -115,7 +115,7 @@ def rated(
 
 def scaled(beam: Subject, case: str, factor: float) -> Subject:
     loads = tuple(
-        replace(load, values=(load.values[0] * factor, load.values[1] * factor))
+        load._replace(values=(load.values[0] * factor, load.values[1] * factor))
         if load.case == case
         else load
         for load in beam.loads

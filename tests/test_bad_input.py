@@ -126,6 +126,23 @@ MODELS: Mapping[str, tuple[str, Sequence[str]]] = {
     "number beyond all bounds": (
         changed(GOOD_MODEL, (",6000.0)", ",1.E999)")), ("cannot be read", EXPORT),
     ),
+    "number with two points": (
+        changed(GOOD_MODEL, (",6000.0)", ",6000.0.5)")), ("cannot be read", EXPORT),
+    ),
+    "number with a letter": (
+        changed(GOOD_MODEL, (",6000.0)", ",6O00.0)")), ("cannot be read", EXPORT),
+    ),
+    "byte that means nothing": (
+        changed(GOOD_MODEL, (",6000.0)", ",6000.0@)")), ("cannot be read", EXPORT),
+    ),
+    "fault in what no beam uses": (
+        changed(GOOD_MODEL, ("ENDSEC;\nEND", "#9999=IFCDIRECTION((1.,--1.));\nENDSEC;\nEND")),
+        ("cannot be read", EXPORT),
+    ),
+    "class that the schema has not": (
+        changed(GOOD_MODEL, ("IFCEXTRUDEDAREASOLID", "IFCEXTRUDEDAREASOLIDE")),
+        ("instances but only", "=IFCEXTRUDEDAREASOLIDE(", EXPORT),
+    ),
     "relation to a number": (
         changed(GOOD_MODEL, ("#10,(#11)", "#10,(1.0)")),
         ("does not hold what its class asks", EXPORT),

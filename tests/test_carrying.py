@@ -109,11 +109,11 @@ def test_only_what_surely_holds_an_end_presses_into_it() -> None:
     column = on("A", "start", None)
     assert pressed_ends((column, on("A", "end", None, "below"))) == (True, True)
     for other in (
-        replace(column, side="side"),
-        replace(column, side="above"),
-        replace(column, bears=False),
-        replace(column, doubt=NOT_CARRIED),
-        replace(column, place="between", side="below"),
+        column._replace(side="side"),
+        column._replace(side="above"),
+        column._replace(bears=False),
+        column._replace(doubt=NOT_CARRIED),
+        column._replace(place="between", side="below"),
         on("A", "start", "B"),
     ):
         assert pressed_ends((other,)) == (False, False)

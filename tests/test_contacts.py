@@ -366,7 +366,7 @@ def test_order_of_members_changes_nothing() -> None:
 
 def test_the_reason_names_three_at_most() -> None:
     one = found(member("S1", "IfcBeam", (900.0, 150.0, 0.0), (1200.0, 5000.0, DEPTH)))
-    five = [replace(one[0], other=f"S{n} (IfcBeam)") for n in (1, 2, 2, 3, 4, 5)]
+    five = [one[0]._replace(other=f"S{n} (IfcBeam)") for n in (1, 2, 2, 3, 4, 5)]
     assert reactions_reason([]) is None
     reason = reactions_reason(one)
     assert reason is not None

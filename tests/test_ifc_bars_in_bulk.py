@@ -48,6 +48,9 @@ def frame_of_bars(unit: str, schema: str, rng: random.Random) -> ModelWithBars:
     hooked = bent([(300.0, 0.0, 60.0), (50.0, 0.0, 60.0), (50.0, 0.0, 400.0)], 50.0)
     for beam in beams:
         model.bars(beam, straight(50, 5950, -90, 60), hooked, diameter=20.0, SteelGrade="400W")
+        polyline = model.file.create_entity("IfcPolyline", places_in(model, 50.0, 3000.0, 5950.0))
+        solid = model.file.create_entity("IfcSweptDiskSolid", polyline, 10.0 * model.scale)
+        model.aggregate(beam, [model.bar([solid], 20.0, beam, SteelGrade="400W")])
         model.bars(beam, straight(50, 5950, 90, 60), diameter=20.0, SteelGrade="500W")
         solid = model.swept(closed_stirrup(0.0, 110.0, 40.0, 560.0), 10.0)
         items = model.mapped(solid, [(150.0 + 200.0 * k, 0.0, 0.0) for k in range(8)])
@@ -58,7 +61,12 @@ def frame_of_bars(unit: str, schema: str, rng: random.Random) -> ModelWithBars:
     return model
 
 
+def places_in(model: ModelWithBars, *xs: float) -> list[Any]:
+    return [model.point((x, 45.0, 60.0)) for x in xs]
+
+
 def _make_unusual(model: ModelWithBars, rng: random.Random) -> None:
+    _sweep_between_parameters(model, rng)
     bars = model.file.by_type("IfcReinforcingBar")
     for bar in rng.sample(bars, 6):
         bar.Name, bar.Tag = rng.choice(NAMES), rng.choice((None, "T1", "it's"))
@@ -74,6 +82,35 @@ def _make_unusual(model: ModelWithBars, rng: random.Random) -> None:
     nowhere.ObjectPlacement = None
     sizeless.NominalDiameter = 0.0
     flat.ObjectPlacement.RelativePlacement.Location.Coordinates = (1.0, 2.0)
+
+
+def _sweep_between_parameters(model: ModelWithBars, rng: random.Random) -> None:
+    """Give some solids the parameters that they are swept between: all of the curve counted in
+    either way, nearly all of it, or a part; stirrups stay, so that some are read."""
+    solids = model.file.by_type("IfcSweptDiskSolid")
+    bars = [solid for solid in solids if solid.Radius > 6.0 * model.scale]
+    for solid in rng.sample(bars, 5):
+        whole = rng.choice((pieces_of(solid.Directrix), length_of(solid.Directrix)))
+        share = rng.choice((1.0, 1.0, 1.0 + 2e-5, 1.0 - 9e-5, 1.0 + 2e-4, 0.5))
+        solid.StartParam, solid.EndParam = rng.choice((0.0, 0.0, None, 0.25)), whole * share
+
+
+def points_of(curve: Any) -> np.ndarray:
+    if curve.is_a("IfcPolyline"):
+        return np.array([point.Coordinates for point in curve.Points])
+    return np.array(curve.Points.CoordList)
+
+
+def pieces_of(curve: Any) -> float:
+    """The last parameter of a curve as the standard counts."""
+    if curve.is_a("IfcPolyline"):
+        return len(curve.Points) - 1.0
+    return float(len(curve.Segments))
+
+
+def length_of(curve: Any) -> float:
+    """Length along straight steps: that of a curve without arcs, in units of the model."""
+    return float(np.linalg.norm(np.diff(points_of(curve), axis=0), axis=1).sum())
 
 
 def as_written(text: str, rng: random.Random, style: str) -> str:
@@ -175,10 +212,58 @@ def test_most_bars_are_read_in_bulk(style: str) -> None:
     assert len(readers.swept_paths) > 0
 
 
+@pytest.mark.parametrize("style", STYLES)
+@pytest.mark.parametrize("schema", ["IFC2X3", "IFC4"])
+def test_polylines_are_read_in_bulk(schema: str, style: str) -> None:
+    """Each with its parameters: left out are those swept over a part and those without length."""
+    rng = random.Random(2)
+    model = ModelWithBars(schema=schema)
+    beam = model.beam()
+    for xs in ((50.0, 5950.0), (50.0, 100.0, 3000.0), (50.0, 60.0, 70.0, 80.0)):
+        model.bars(beam, straight(xs[0], xs[-1], 0, 60))
+        curve = model.file.create_entity("IfcPolyline", places_in(model, *xs))
+        for start, end in ((None, None), (0.0, len(xs) - 1.0), (None, xs[-1] - xs[0]), (0.0, 0.5)):
+            solid = model.file.create_entity("IfcSweptDiskSolid", curve, 8.0)
+            solid.StartParam, solid.EndParam = start, end
+            model.aggregate(beam, [model.bar([solid], 16.0, beam)])
+    text = as_written(model.file.to_string(), rng, style)
+    file = ifcopenshell.file.from_string(text)
+    solids = file.by_type("IfcSweptDiskSolid")
+    found = read_swept_texts(table_of(text), np.array([solid.id() for solid in solids]), 1.0)
+    whole = [place for place, solid in enumerate(solids) if solid.EndParam != 0.5]
+    assert sorted(found.place.tolist()) == whole
+    for row, place in enumerate(found.place.tolist()):
+        first, stop = found.paths.first[row : row + 2].tolist()
+        points = points_of(solids[place].Directrix)
+        assert found.paths.points[first:stop].tolist() == points.tolist()
+
+
 def reinforcement_readers(file: Any) -> Any:
     from ifccheck.ifc.bar_columns import BarReaders
 
     return BarReaders(make_context(file, "IFC4"))
+
+
+@pytest.mark.parametrize("style", STYLES)
+def test_instances_of_a_class_are_listed_as_they_are_opened(style: str) -> None:
+    rng = random.Random(3)
+    model = frame_of_bars("mm", "IFC4", rng)
+    model.root("IfcReinforcingBarType", Name="IFCREINFORCINGBAR(", PredefinedType="MAIN")
+    text = as_written(model.file.to_string(), rng, style)
+    file, table = ifcopenshell.file.from_string(text), table_of(text)
+    for name in ("IfcReinforcingBar", "IfcReinforcingBarType", "IfcDirection", "IfcTendon"):
+        found = table.ids_of(name.upper())
+        assert found is not None
+        assert found.tolist() == [entity.id() for entity in file.by_type(name)]
+
+
+@pytest.mark.parametrize(
+    "statement",
+    ["#2=ifcx();", "#2=IfcX();", "#02=IFCX();", "# 2=IFCX();", "#2=IFCX/**/();", "#2=IFCX;"],
+)
+def test_a_class_is_not_listed_where_a_statement_is_written_otherwise(statement: str) -> None:
+    assert table_of(f"{HEAD}#1=IFCX();#3=IFCXY();{statement}{FOOT}").ids_of("IFCX") is None
+    assert table_of(f"{HEAD}#1=IFCX();#3=IFCXY();{FOOT}").ids_of("IFCX").tolist() == [1]  # type: ignore[union-attr]
 
 
 def test_statements_that_hide_what_is_text_are_not_followed() -> None:
@@ -187,7 +272,8 @@ def test_statements_that_hide_what_is_text_are_not_followed() -> None:
     table = table_of(f"{HEAD}{text}{FOOT}")
     ids = np.array([1, 2, 3, 4, 9])
     assert table.rows(ids).tolist() == [0, -1, -1, 1, -1]
-    assert table.rest(table.cursors(ids, "IFCX"), ids) == [b"'a');", b"", b"", b"'e');", b""]
+    rests = table.rests(table.cursors(ids, "IFCX"), ids)
+    assert [rests.of(row) for row in range(5)] == [b"'a');", b"", b"", b"'e');", b""]
 
 
 def test_no_table_is_made_where_no_statement_is_left() -> None:
@@ -203,6 +289,19 @@ def test_no_table_is_made_where_no_statement_is_left() -> None:
         "IFCINDEXEDPOLYCURVE(#8,(IFCLINEINDEX((1,4))),.F.)",  # has no fourth point
         "IFCINDEXEDPOLYCURVE(#8,(IFCARCINDEX((1,2))),.F.)",  # is no arc
         "IFCPOLYLINE((#8,#8))",
+        "IFCPOLYLINE(())",
+        "IFCPOLYLINE((#20))",
+        "IFCPOLYLINE((#20,$))",
+        "IFCPOLYLINE((#20,,#21))",
+        "IFCPOLYLINE((#20,#21),#20)",
+        "IFCPOLYLINE((#20,x#21))",
+        "IFCPOLYLINE((#20,#21x))",
+        "IFCPOLYLINE((1,#20,#21))",
+        "IFCPOLYLINE((#20,#22))",
+        "IFCPOLYLINE((#20,#23))",
+        "IFCPOLYLINE((#20,#24))",
+        "IFCPOLYLINE((#20,#20#21))",
+        "IFCPOLYLINE(#20,#21)",
         "IFCINDEXEDPOLYCURVE(#10,$,.F.)",
         "IFCINDEXEDPOLYCURVE(#11,$,.F.)",
         "IFCINDEXEDPOLYCURVE(#12,$,.F.)",
@@ -220,7 +319,9 @@ def test_curves_that_are_not_plain_are_left_to_the_thorough_reader(curve: str) -
         "#11=IFCCARTESIANPOINTLIST3D(((0.,0.,0.)));"
         "#12=IFCCARTESIANPOINTLIST3D(((0.,0.,0.),(1.E12,0.,0.)));"
         "#13=IFCCARTESIANPOINTLIST3D(((0.,0.,0.),(1.,nan,0.)));"
-        "#14=IFCCARTESIANPOINTLIST3D(((0.,0.,0.),(1.,.5,0.)));" + FOOT
+        "#14=IFCCARTESIANPOINTLIST3D(((0.,0.,0.),(1.,.5,0.)));"
+        "#20=IFCCARTESIANPOINT((0.,0.,0.));#21=IFCCARTESIANPOINT((1.,0.,0.));"
+        "#22=IFCCARTESIANPOINT((1.,0.));#23=IFCCARTESIANPOINT((1.E12,0.,0.));" + FOOT
     )
     found = read_swept_texts(table, np.array([5, 6]), 2.0)
     assert found.place.tolist() == [1]
@@ -261,6 +362,58 @@ def test_any_spelling_of_a_number_is_read_as_python_reads_it(texts: list[str]) -
 @pytest.mark.parametrize("text", ["", "-", ".5", "-.5", "+1.", "nan", "1.e3", "1.E", "0x1", "1_0."])
 def test_what_step_does_not_call_a_number_is_none(text: str) -> None:
     assert numbers_in([text])[1] == [False]
+
+
+def cursors_at(texts: Sequence[bytes]) -> Cursors:
+    begin = np.cumsum([0, *(len(text) + 1 for text in texts[:-1])])
+    data = np.frombuffer(b"|".join(texts) + b"|", np.uint8)
+    return Cursors(data, begin, np.ones(len(texts), dtype=bool))
+
+
+@given(st.lists(st.from_regex(rb"\A ?#? ?[0-9]{0,20}[,x]\Z"), min_size=1, max_size=30))
+def test_references_of_any_length_are_read(texts: list[bytes]) -> None:
+    cursors = cursors_at(texts)
+    found = cursors.reference().tolist()
+    cursors.tokens(b",")
+    for text, number, plain in zip(texts, found, cursors.plain.tolist(), strict=True):
+        match = re.fullmatch(rb" ?#([0-9]{1,18})(,?)x?", text)
+        assert number == (int(match[1]) if match else 0)
+        assert plain == bool(match and match[2])
+
+
+@given(st.lists(st.from_regex(rb"\A ?('[a-z(;,]{0,90}'|\$|'')'?,\Z"), min_size=1, max_size=30))
+def test_texts_up_to_some_length_are_passed_over(texts: list[bytes]) -> None:
+    cursors = cursors_at(texts)
+    cursors.text_or_nothing()
+    cursors.tokens(b",")
+    for text, plain in zip(texts, cursors.plain.tolist(), strict=True):
+        match = re.fullmatch(rb" ?(?:'([^']*)'|\$),", text)
+        if match and len(match[1] or b"") < 80:
+            assert plain
+        assert not plain or match
+
+
+BEGINNINGS = (b"$,'a',(#1", b"$,'b',(#2", b"#7,$,(#3", b"$, $,(#4", b"x")
+
+
+@given(
+    st.lists(st.sampled_from(BEGINNINGS), min_size=1),
+    st.lists(st.sampled_from([b"$,'c%d',(#5" % number for number in range(9)]), max_size=9),
+)
+def test_the_same_text_is_passed_over_as_when_it_is_read(
+    texts: list[bytes], more: list[bytes]
+) -> None:
+    def read(cursors: Cursors) -> None:
+        cursors.reference_or_nothing()
+        cursors.tokens(b",")
+        cursors.text_or_nothing()
+        cursors.tokens(b",", b"(")
+
+    together, alone = cursors_at(texts + more), cursors_at(texts + more)
+    together.same_text(read)
+    read(alone)
+    assert together.plain.tolist() == alone.plain.tolist()
+    assert together.at[alone.plain].tolist() == alone.at[alone.plain].tolist()
 
 
 def test_cursors_pass_over_what_is_asked_and_nothing_else() -> None:

@@ -11,8 +11,8 @@ import numpy as np
 import pytest
 
 from ifccheck.beam import Box
+from tests.bodies_of_beams import Bodies
 from tests.ifc_models import Building, Opened, volume_and_points
-from tests.test_ifc_straight import faceted_box
 
 
 def overhang(box: Box, points: np.ndarray) -> np.ndarray:
@@ -92,7 +92,11 @@ def test_box_of_a_cut_column_ends_at_the_cut() -> None:
 def test_box_of_a_brep_lies_along_its_placement() -> None:
     building = Building()
     placement = building.placement((100, 200, 300), (0, 0, 1), (0.6, 0.8, 0))
-    product = building.member("IfcColumn", faceted_box(building), placement=placement)
+    bodies = Bodies(building.file)
+    outline = ((0.0, 0.0), (300.0, 0.0), (300.0, 500.0), (0.0, 500.0))
+    ends = [(0.0, outline), (6000.0, outline)]
+    brep = bodies.brep(bodies.corners(ends), bodies.rings(ends))
+    product = building.member("IfcColumn", brep, placement=placement)
     box = only_member(building)
     assert box.half == pytest.approx((3000.0, 150.0, 250.0))
     assert box.axes[0] == pytest.approx((0.6, 0.8, 0.0))

@@ -11,7 +11,13 @@ import pytest
 from ifccheck.beam import Beam, Model
 from ifccheck.ifc.reader import read_model
 from ifccheck.ifc.strength_texts import Reading, Unread, read_strength_text
-from ifccheck.ifc.vocabulary import families_named, families_of_material
+from ifccheck.ifc.vocabulary import (
+    STEMS,
+    USE_WORDS,
+    WORD,
+    families_named,
+    families_of_material,
+)
 from tests.ifc_models import Building, Opened, only_beam, only_left_out, reasons
 
 
@@ -680,3 +686,12 @@ def test_lightweight_concrete_of_unstated_density_is_a_doubt() -> None:
     assert "lightweight" in reason.text
     assert not reason.blocking
     assert beam.concrete_density is None
+
+
+def test_every_phrase_has_the_letters_by_which_names_without_any_are_passed_over() -> None:
+    phrases = [
+        phrase for words in (STEMS, USE_WORDS) for group in words.values() for phrase in group
+    ]
+    assert len(phrases) > 100
+    assert [phrase for phrase in phrases if WORD.search(phrase) is None] == []
+    assert families_named("B-12 x 4") == families_named("ab_12_cd") == frozenset()

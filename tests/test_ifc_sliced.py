@@ -436,3 +436,109 @@ def test_random_bodies_are_read_or_refused_with_a_reason(
         "read" in reason.text for reason in beam.reasons
     ):
         assert_close(run_moments(beam), engine_moments(product, beam)[0])
+
+
+def round_topped(bodies: Bodies) -> Any:
+    """An advanced Brep: 300 wide, upright sides of 350, a half disc on top as a cylinder's face."""
+    make, length = bodies.make, 6000.0
+    flat = [(-150.0, 0.0), (150.0, 0.0), (150.0, 350.0), (-150.0, 350.0)]
+    points = {(x, k): bodies.point(x, *flat[k]) for x in (0.0, length) for k in range(4)}
+    vertices = {key: make("IfcVertexPoint", point) for key, point in points.items()}
+
+    def line(one: Any, other: Any) -> Any:
+        (x0, k0), (x1, k1) = one, other
+        along = np.subtract((x1, *flat[k1]), (x0, *flat[k0]))
+        size = float(np.linalg.norm(along))
+        vector = make("IfcVector", bodies.direction(*(along / size)), bodies.length(size))
+        curve = make("IfcLine", points[one], vector)
+        return make("IfcEdgeCurve", vertices[one], vertices[other], curve, True)
+
+    def arc(x: float) -> Any:
+        axes = bodies.axes((x, 0, 350), (1, 0, 0), (0, 1, 0))
+        circle = make("IfcCircle", axes, bodies.length(150.0))
+        return make("IfcEdgeCurve", vertices[x, 2], vertices[x, 3], circle, True)
+
+    ends = {x: [line((x, 0), (x, 1)), line((x, 1), (x, 2)), arc(x), line((x, 3), (x, 0))]
+            for x in (0.0, length)}  # fmt: skip
+    longs = [line((0.0, k), (length, k)) for k in range(4)]
+
+    def face(sides: Any, surface: Any) -> Any:
+        edges = [make("IfcOrientedEdge", None, None, edge, way) for edge, way in sides]
+        loop = make("IfcEdgeLoop", edges)
+        return make("IfcAdvancedFace", [make("IfcFaceOuterBound", loop, True)], surface, True)
+
+    def plane(place: Any, normal: Any, x: Any) -> Any:
+        return make("IfcPlane", bodies.axes(place, normal, x))
+
+    start, end = ends[0.0], ends[length]
+    surfaces = [
+        plane((0, 0, 0), (0, 0, -1), (1, 0, 0)), plane((0, 150, 0), (0, 1, 0), (1, 0, 0)),
+        make("IfcCylindricalSurface", bodies.axes((0, 0, 350), (1, 0, 0), (0, 1, 0)),
+             bodies.length(150.0)),
+        plane((0, -150, 0), (0, -1, 0), (1, 0, 0)),
+    ]  # fmt: skip
+    faces = [
+        face([(start[k], False), (longs[k], True), (end[k], True), (longs[(k + 1) % 4], False)],
+             surface)
+        for k, surface in enumerate(surfaces)
+    ]  # fmt: skip
+    caps = (
+        face([(edge, True) for edge in end], plane((length, 0, 0), (1, 0, 0), (0, 1, 0))),
+        face([(edge, False) for edge in start[::-1]], plane((0, 0, 0), (-1, 0, 0), (0, -1, 0))),
+    )
+    return make("IfcAdvancedBrep", make("IfcClosedShell", [*faces, *caps]))
+
+
+@pytest.mark.parametrize("unit", ["MILLIMETRE", "METRE", "FOOT"])
+def test_a_brep_with_curved_faces_is_traced_within_a_tenth_of_a_millimetre(unit: str) -> None:
+    """By formula: a rectangle and half a disc."""
+    building = Building("IFC4", unit)
+    _, beam = drawn(building, [round_topped(Bodies(building.file, building.mm))])
+    assert reasons(beam) == ""
+    assert beam.length == pytest.approx(6000.0, abs=0.01)
+    (run,) = beam.runs
+    assert max(z for _, z in run.outline.rings[0]) == pytest.approx(500.0, abs=0.11)
+    half = math.pi * 150**2 / 2
+    found = outline_moments(run.outline)
+    assert found[0] == pytest.approx(300 * 350 + half, rel=1e-3)
+    assert found[0] <= 300 * 350 + half
+    centroid = 350 + 4 * 150 / (3 * math.pi)
+    assert found[2] == pytest.approx(300 * 350**2 / 2 + half * centroid, rel=1e-3)
+    about_own = (math.pi / 8 - 8 / (9 * math.pi)) * 150**4
+    assert found[4] == pytest.approx(300 * 350**3 / 3 + about_own + half * centroid**2, rel=1e-3)
+
+
+def test_what_the_geometry_engine_cannot_build_is_a_reason() -> None:
+    building = Building("IFC4")
+    item = round_topped(Bodies(building.file))
+    item.Outer.CfsFaces = item.Outer.CfsFaces[:1]
+    _, beam = drawn(building, [item])
+    assert beam.axis is None
+    assert beam.reasons
+
+
+# Nested booleans -----------------------------------------------------------------------------
+
+
+def test_a_tree_of_booleans_is_worked_out_on_the_slices() -> None:
+    """((box + box) - cylinder through both) within a block, less a half-space: by formula."""
+    building = Building()
+    bodies = Bodies(building.file)
+    whole = bodies.joined(
+        bodies.block((-500, -200, 0), (6500, 200, 400)),
+        bodies.block((-500, -100, 300), (6500, 100, 700)),
+    )
+    axes = bodies.axes((-1000, 0, 200), (1, 0, 0), (0, 1, 0))
+    duct = bodies.make("IfcRightCircularCylinder", axes, bodies.length(9000.0), bodies.length(80.0))
+    hollow = bodies.less(whole, duct)
+    within = bodies.make(
+        "IfcBooleanResult", "INTERSECTION", hollow, bodies.block((0, -900, -900), (6000, 900, 900))
+    )
+    item = bodies.less(within, bodies.half_space((0, 0, 650), (0, 0, 1)))
+    _, beam = drawn(building, [item])
+    assert reasons(beam) == ""
+    (run,) = beam.runs
+    assert len(run.outline.rings) == 2
+    wanted = 400 * 400 + 200 * 250 - math.pi * 80**2
+    assert outline_moments(run.outline)[0] == pytest.approx(wanted, rel=1e-3)
+    assert beam.length == pytest.approx(6000.0, abs=0.01)

@@ -181,6 +181,15 @@ def test_json_is_the_same_twice_and_plain_ascii() -> None:
     assert json.loads(text)["beams"][0]["mark"] == HOSTILE[0]
 
 
+@pytest.mark.parametrize("report", [REPORT, hostile_report()], ids=["made up", "hostile"])
+def test_every_row_is_spelled_as_json_spells_it(report: Report) -> None:
+    text = ratings_json(report)
+    rows = text[text.index('"beams": [\n') + 11 : text.index('\n],\n"out_of_scope"')].split(",\n")
+    assert len(rows) == len(report.model.beams)
+    for row in rows:
+        assert json.dumps(json.loads(row)) == row
+
+
 # property sets
 
 

@@ -12,7 +12,7 @@ import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 
-from ifccheck.beam import Anchor, Axis, Outline
+from ifccheck.beam import SELF, Anchor, Axis, Outline, Run, Span, Support
 from ifccheck.publish.drawings import diagram, section
 from ifccheck.publish.elevation import LEFT, RIGHT, WIDTH, Frame, elevation
 from ifccheck.publish.plan import framing_plans
@@ -113,7 +113,7 @@ def test_a_downward_load_points_down_above_and_below_the_beam() -> None:
 def test_a_moment_load_turns_as_it_acts(moment: float) -> None:
     """A positive moment turns anticlockwise with x to the right and z up (``beam.Load``)."""
     sheet = sheet_of("B-1000")
-    load = replace(sheet.loads[-1], kind="moment", values=(moment, 0.0), face="top")
+    load = sheet.loads[-1]._replace(kind="moment", values=(moment, 0.0), face="top")
     (drawn,) = of_class(elevation(replace(sheet, loads=(load,))), "moment")
     data = drawn.get("d") or ""
     (arc,) = re.findall(r"^M(\S+) (\S+)A11 11 0 1 ([01]) (\S+) (\S+)l", data)
@@ -397,3 +397,76 @@ def test_mark_and_utilisation_part_where_no_room_for_both_is_on_one_side() -> No
     assert re.findall(r">([^<]+)</text>", alone) == ["G-101"]
     both = Labels([girder, *narrow]).set(girder, "G-101", "1.66", always=True)
     assert re.findall(r">([^<]+)</text>", both) == ["G-101  1.66"]
+
+
+# Sections that vary -------------------------------------------------------------------------------
+
+
+def varying_sheet(*runs: Run) -> Sheet:
+    sheet = sheet_of("B-1000")
+    assert sheet.beam.axis
+    axis = replace(sheet.beam.axis, length=runs[-1].end)
+    support = Support("pinned", 200.0, "test")
+    span = Span(100.0, runs[-1].end - 100.0, support, support)
+    return replace(sheet, beam=replace(sheet.beam, axis=axis, runs=runs), span=span)
+
+
+def at(low: float, high: float) -> Outline:
+    return Outline((((-150.0, low), (150.0, low), (150.0, high), (-150.0, high)),))
+
+
+def test_tapers_and_steps_are_drawn_to_scale() -> None:
+    svg = elevation(
+        varying_sheet(
+            Run(0.0, 400.0, at(400, 800)), Run(400.0, 3000.0, at(0, 800)),
+            Run(3000.0, 6000.0, at(0, 800), at(300, 800)),
+        )
+    )  # fmt: skip
+    along = SPAN_OF_STRIP / 6000.0
+    corners = numbers(of_class(svg, "concrete")[0].get("d") or "")
+    foot = max(y for _, y in corners)
+    places = {(round((x - LEFT) / along, -1), round((foot - y) / along, -1)) for x, y in corners}
+    assert places == {
+        (0, 400), (0, 800), (400, 400), (400, 800), (400, 0), (3000, 0), (3000, 800), (6000, 300),
+        (6000, 800),
+    }  # fmt: skip
+
+
+def test_a_support_stands_under_the_soffit_that_the_beam_has_there() -> None:
+    svg = elevation(varying_sheet(Run(0.0, 400.0, at(400, 800)), Run(400.0, 6000.0, at(0, 800))))
+    along = SPAN_OF_STRIP / 6000.0
+    first, last = (numbers(e.get("d") or "")[0][1] for e in of_class(svg, "bearing"))
+    assert last - first == pytest.approx(400.0 * along, abs=0.15)
+
+
+def test_what_is_not_rated_beside_a_step_is_hatched() -> None:
+    svg = elevation(varying_sheet(Run(0.0, 2000.0, at(400, 800)), Run(2000.0, 6000.0, at(0, 800))))
+    (hatched,) = of_class(svg, "unrated")
+    xs = [x for x, _ in numbers(hatched.get("d") or "")]
+    along = SPAN_OF_STRIP / 6000.0
+    assert [min(xs), max(xs)] == pytest.approx(
+        [LEFT + 1200.0 * along, LEFT + 2800.0 * along], abs=0.15
+    )
+    assert of_class(elevation(varying_sheet(Run(0.0, 6000.0, at(0, 800)))), "unrated") == []
+
+
+def test_self_weight_in_several_parts_is_one_band() -> None:
+    sheet = sheet_of("B-1000")
+    own = next(load for load in sheet.loads if load.case == SELF)
+    half = sheet.beam.length / 2.0
+    parts = (
+        own._replace(end=half, values=(3.0, 4.0)), own._replace(start=half, values=(4.0, 5.0)),
+    )  # fmt: skip
+    others = tuple(load for load in sheet.loads if load.case != SELF)
+    one, two = (elevation(replace(sheet, loads=(*some, *others))) for some in ((own,), parts))
+    assert ElementTree.fromstring(one).get("viewBox") == ElementTree.fromstring(two).get("viewBox")
+    assert "self: 3.00 kN/m to 5.00 kN/m" in texts(two)
+
+
+def test_bars_along_a_taper_are_named_once() -> None:
+    sheet = varying_sheet(Run(0.0, 6000.0, at(0, 800), at(300, 800)))
+    bar = replace(sheet.bars[0], start=0.0, end=3000.0, z=100.0)
+    pieces = (bar, replace(bar, start=3000.0, end=6000.0, z=250.0))
+    svg = elevation(replace(sheet, bars=pieces))
+    assert len(of_class(svg, "bar")) == 1
+    assert len(of_class(svg, "bar-name")) == 1

@@ -2,8 +2,6 @@
 
 from __future__ import annotations
 
-from dataclasses import replace
-
 import pytest
 
 from ifccheck.beam import Contact, Given, Support, SupportKind
@@ -24,7 +22,7 @@ def contact(place: str, side: str, reach: float = 400.0, **more: object) -> Cont
         "B", f"C-{place} (IfcColumn)", "IfcColumn", start if inside else at, end if inside else at,
         place, side, beyond=0.0 if inside else reach,  # type: ignore[arg-type]
     )  # fmt: skip
-    return replace(made, **more)  # type: ignore[arg-type]
+    return made._replace(**more)  # type: ignore[arg-type]
 
 
 def stand(
@@ -153,8 +151,8 @@ def test_the_span_is_centre_to_centre_however_far_an_end_is_drawn_into_its_colum
     ends = [contact(end, side, reach, beyond=400.0 - overlap) for end in ("start", "end")]
     if side == "end":
         ends = [
-            replace(ends[0], end=overlap),
-            replace(ends[1], start=6000.0 - overlap),
+            ends[0]._replace(end=overlap),
+            ends[1]._replace(start=6000.0 - overlap),
         ]
     span = stand(*ends, bearings=(bearing, bearing)).span
     assert span.end - span.start == pytest.approx(6000.0 - 2.0 * overlap + 400.0)

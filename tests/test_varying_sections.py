@@ -19,8 +19,8 @@ from ifccheck.rating.disturbed import disturbed
 from ifccheck.rating.results import LimitStateRating, Rating
 from ifccheck.rating.shape import shape_reasons
 from ifccheck.rating.subject import Subject
+from ifccheck.standards.csa_a23_3_14.cracked import with_chords
 from ifccheck.standards.csa_a23_3_14.shear_lines import SHEAR_LINES
-from ifccheck.standards.csa_a23_3_14.web import with_chords
 from tests.made_subjects import STANDARD, line, point, rated, subject
 
 LENGTH = 6000.0

@@ -22,7 +22,12 @@ from hypothesis import given
 from hypothesis import strategies as st
 
 from ifccheck.errors import ModelError
-from ifccheck.ifc.identity import RESULT_SET_NAMES, relation_guid, set_guid
+from ifccheck.ifc.identity import (
+    RESULT_SET_NAMES,
+    relation_guid,
+    set_and_relation_guids,
+    set_guid,
+)
 from ifccheck.ifc.lexer import LARGEST_ID
 from ifccheck.ifc.opening import OpenedModel, open_model
 from ifccheck.ifc.step_text import step_real, step_string
@@ -381,6 +386,14 @@ def test_globalids_are_uuids_of_version_5() -> None:
         related = uuid.uuid5(space, f"{beam}\n{ordinal}\n{name}\nrelation")
         assert relation_guid(beam, ordinal, name) == ifcopenshell.guid.compress(related.hex)
         assert uuid.UUID(ifcopenshell.guid.expand(set_guid(beam, ordinal, name))).version == 5
+
+
+def test_globalids_of_many_sets_are_those_of_each() -> None:
+    identities = [(f"beam {n}", n % 3, name) for n in range(7) for name in RESULT_SET_NAMES]
+    assert set_and_relation_guids(identities) == [
+        (set_guid(*identity), relation_guid(*identity)) for identity in identities
+    ]
+    assert set_and_relation_guids([]) == []
 
 
 def test_fresh_numbers_use_the_gaps() -> None:

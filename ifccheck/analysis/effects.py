@@ -14,6 +14,7 @@ from dataclasses import dataclass, replace
 import numpy as np
 
 from ifccheck.analysis.statics import CaseEffects
+from ifccheck.analysis.stations import starts
 from ifccheck.mechanics.arrays import Bools, Demand, Floats, Ints
 
 GREATEST_MOMENT, LEAST_MOMENT, GREATEST_SHEAR, LEAST_SHEAR = range(4)
@@ -33,12 +34,16 @@ class Effects:
     """[N*mm] (C, 4, N)"""
     shear: Floats
     """[N], acting together with the moment (C, 4, N)"""
+    full: Bools
+    """Whether each case makes the extreme greater and so takes its greater factor (4, K, N)"""
     upward: Bools
     """Whether cases without effect on the extreme make the accompanying effect greater rather
     than less (C, 4, N)"""
+    idle: Ints
+    """Stations at which a case has a moment but no shear, or a shear but no moment"""
 
 
-def combine(cases: CaseEffects, factors: Floats, arrangements: int = ARRANGEMENTS) -> Effects:
+def combine(cases: CaseEffects, factors: Floats) -> Effects:
     """Extremes of moment and shear in every combination at every station.
 
     Parameters
@@ -47,47 +52,48 @@ def combine(cases: CaseEffects, factors: Floats, arrangements: int = ARRANGEMENT
         Effects of each case alone (K, N).
     factors
         Unfavourable and favourable factor of each case (C, K, 2).
-    arrangements
-        How many of the arrangements are wanted: 2 are those of the moments.
     """
-    shape = (len(factors), arrangements, cases.moment.shape[1])
     greater, lesser = factors.max(axis=2), factors.min(axis=2)
-    moment, shear, upward = np.empty(shape), np.empty(shape), np.empty(shape, np.bool_)
-    for arrangement in range(arrangements):
-        own, other, most = _roles(cases, arrangement)
-        extreme, together, up = _extreme(own, other, greater, lesser, most=most)
-        of_moment = arrangement in (GREATEST_MOMENT, LEAST_MOMENT)
-        moment[:, arrangement], shear[:, arrangement] = (
-            (extreme, together) if of_moment else (together, extreme)
-        )
-        upward[:, arrangement] = up
-    return Effects(cases, greater, lesser, moment, shear, upward)
+    both = np.stack([cases.moment, cases.shear], axis=1)
+    together = np.zeros((2, len(factors), ARRANGEMENTS, both.shape[-1]))
+    full = np.empty((ARRANGEMENTS, *cases.moment.shape), np.bool_)
+    upward = np.ones(together.shape[1:], np.bool_)
+    one_alone = (both[:, 0] == 0.0) != (both[:, 1] == 0.0)
+    idle = np.flatnonzero(one_alone.any(axis=0))
+    for arrangement in range(ARRANGEMENTS):
+        own, most = _driving(arrangement)
+        np.copyto(full[arrangement], both[:, own] > 0.0 if most else both[:, own] < 0.0)
+        _add_weighted(together[:, :, arrangement], greater, lesser, both, full[arrangement])
+        if idle.size:
+            alone = both[:, 1 - own, idle] * (both[:, own, idle] == 0.0)
+            beside = together[1 - own, :, arrangement]
+            beside[:, idle], upward[:, arrangement, idle] = _with_idle(
+                beside[:, idle], alone, greater - lesser
+            )
+    moment, shear = together
+    return Effects(cases, greater, lesser, moment, shear, full, upward, idle)
 
 
-def _roles(cases: CaseEffects, arrangement: int) -> tuple[Floats, Floats, bool]:
-    """The effect that the arrangement drives, the one that comes with it, and whether the
-    greatest is sought."""
-    most = arrangement in (GREATEST_MOMENT, GREATEST_SHEAR)
-    if arrangement in (GREATEST_MOMENT, LEAST_MOMENT):
-        return cases.moment, cases.shear, most
-    return cases.shear, cases.moment, most
+def _driving(arrangement: int) -> tuple[int, bool]:
+    """The effect that the arrangement drives, 0 for the moment and 1 for the shear, and whether
+    the greatest is sought."""
+    own = 0 if arrangement in (GREATEST_MOMENT, LEAST_MOMENT) else 1
+    return own, arrangement in (GREATEST_MOMENT, GREATEST_SHEAR)
 
 
-def _extreme(
-    own: Floats, other: Floats, greater: Floats, lesser: Floats, *, most: bool
-) -> tuple[Floats, Floats, Bools]:
-    """The extreme (C, N), what acts with it, and the way that cases without effect on it go."""
-    raising, lowering = (greater, lesser) if most else (lesser, greater)
-    extreme = _weighted(raising, np.maximum(own, 0.0)) + _weighted(lowering, np.minimum(own, 0.0))
-    worse = own > 0.0 if most else own < 0.0
-    together = _weighted(greater, other * worse) + _weighted(lesser, other * ~worse)
-    upward = np.ones(extreme.shape, np.bool_)
-    columns = np.flatnonzero(((own == 0.0) & (other != 0.0)).any(axis=0))
-    if columns.size:
-        together[:, columns], upward[:, columns] = _with_idle(
-            own[:, columns], other[:, columns], worse[:, columns], greater, lesser
-        )
-    return extreme, together, upward
+def _add_weighted(
+    total: Floats, greater: Floats, lesser: Floats, both: Floats, full: Bools
+) -> None:
+    """Add the cases' effects (K, 2, N) to the total (2, C, N), each times its greater factor
+    where it is full (K, N), else its lesser one, in every combination (C, K)."""
+    for case, effects in enumerate(both):
+        raised = effects * full[case].astype(np.float64)
+        rest = effects - raised
+        for combination in range(len(greater)):
+            for factors, part in ((greater, raised), (lesser, rest)):
+                factor = factors[combination, case]
+                if factor != 0.0:
+                    total[:, combination] += factor * part
 
 
 def _weighted(factors: Floats, effects: Floats) -> Floats:
@@ -98,36 +104,40 @@ def _weighted(factors: Floats, effects: Floats) -> Floats:
     return np.asarray(np.einsum("ck,kn->cn", factors, effects))
 
 
-def _with_idle(
-    own: Floats, other: Floats, worse: Bools, greater: Floats, lesser: Floats
-) -> tuple[Floats, Bools]:
+def _with_idle(beside: Floats, idle: Floats, more: Floats) -> tuple[Floats, Bools]:
     """What acts with an extreme on which some cases have no effect: the worse of the two ways
-    that those may go together (C, N), and whether that is upward."""
-    idle = own == 0.0
-    steady = np.where(idle, 0.0, other)
-    base = _weighted(greater, steady * worse) + _weighted(lesser, steady * ~worse)
-    up = np.where(idle, np.maximum(other, 0.0), 0.0)
-    down = np.where(idle, np.minimum(other, 0.0), 0.0)
-    highest = base + _weighted(greater, up) + _weighted(lesser, down)
-    lowest = base + _weighted(lesser, up) + _weighted(greater, down)
+    that those may go together (C, M), and whether that is upward.
+
+    Parameters
+    ----------
+    beside
+        What acts with it while those cases have their lesser factors (C, M).
+    idle
+        Their effects (K, M), 0 for all others.
+    more
+        By how much the greater factor of each case exceeds the lesser (C, K).
+    """
+    highest = beside + _weighted(more, np.maximum(idle, 0.0))
+    lowest = beside + _weighted(more, np.minimum(idle, 0.0))
     upward = np.abs(highest) >= np.abs(lowest)
     return np.where(upward, highest, lowest), upward
 
 
 def case_share(effects: Effects, case: int) -> tuple[Floats, Floats]:
     """The part that one case has in moment and shear of every arrangement (C, 4, N)."""
-    moment, shear = effects.cases.moment[case], effects.cases.shear[case]
-    factor = np.empty(effects.moment.shape)
-    greater, lesser = effects.greater[:, case, None], effects.lesser[:, case, None]
+    both = np.stack([effects.cases.moment[case], effects.cases.shear[case]])
+    share = np.zeros((2, *effects.moment.shape))
+    greater, lesser = effects.greater[:, [case]], effects.lesser[:, [case]]
     for arrangement in range(ARRANGEMENTS):
-        own, other = (moment, shear) if arrangement < GREATEST_SHEAR else (shear, moment)
-        most = arrangement in (GREATEST_MOMENT, GREATEST_SHEAR)
-        worse = own > 0.0 if most else own < 0.0
-        idle = own == 0.0
-        upward = effects.upward[:, arrangement]
-        full = worse | (idle & (upward == (other > 0.0)))
-        factor[:, arrangement] = np.where(full, greater, lesser)
-    return factor * moment, factor * shear
+        full = effects.full[arrangement, case]
+        _add_weighted(share[:, :, arrangement], greater, lesser, both[None], full[None])
+        own, _ = _driving(arrangement)
+        idle = np.flatnonzero((both[own] == 0.0) & (both[1 - own] != 0.0))
+        if idle.size:
+            other = both[1 - own, idle]
+            rising = effects.upward[:, arrangement, idle] == (other > 0.0)
+            share[1 - own, :, arrangement, idle] = (np.where(rising, greater, lesser) * other).T
+    return share[0], share[1]
 
 
 @dataclass(frozen=True, slots=True)
@@ -141,6 +151,8 @@ class Demands:
     total: Demand
     scaled: tuple[int, ...]
     shares: tuple[Demand, ...]
+    critical: Ints
+    """Station whose shear is checked at each where that serves (N)"""
 
 
 def demands(
@@ -197,7 +209,7 @@ def demands(
         demand_of(moment, shear, effects.greater[:, [case]], np.array([case]))
         for case, (moment, shear) in zip(scaled, parts, strict=True)
     )
-    return Demands(total, tuple(scaled), shares)
+    return Demands(total, tuple(scaled), shares, critical)
 
 
 def _without_bounds(total: Demand, unbounded: Bools) -> Demand:
@@ -211,7 +223,7 @@ def _without_bounds(total: Demand, unbounded: Bools) -> Demand:
 
 def _spread(per_beam: Floats, station_beam: Ints, shape: tuple[int, ...]) -> Floats:
     """Values (C, B) at every station and arrangement (C, 4, N)."""
-    return np.broadcast_to(per_beam[:, None, station_beam], shape)
+    return np.broadcast_to(per_beam.take(station_beam, axis=1, mode="clip")[:, None], shape)
 
 
 @dataclass(frozen=True, slots=True)
@@ -227,10 +239,10 @@ def _compressed(effects: Effects, critical: Ints, shares: Sequence[Floats]) -> _
     """Where the reaction compresses the end, whatever a scaled case is multiplied by."""
     rows = np.flatnonzero(critical != np.arange(len(critical))).astype(np.intp, copy=False)
     pushing = np.where(critical[rows] > rows, 1.0, -1.0)
-    shear = effects.shear[..., rows] * pushing
+    shear = effects.shear.take(rows, axis=-1, mode="clip") * pushing
     serves = shear > 0.0
     for share in shares:
-        part = share[..., rows] * pushing
+        part = share.take(rows, axis=-1, mode="clip") * pushing
         serves &= (part >= 0.0) & (shear - part >= -1e-9 * np.abs(shear))
     return _Near(rows, serves)
 
@@ -239,8 +251,11 @@ def _critical_shear(shear: Floats, critical: Ints, near: _Near) -> Floats:
     if not near.rows.size:
         return shear
     checked = shear.copy()
-    there = shear[..., critical[near.rows]]
-    checked[..., near.rows] = np.where(near.serves, there, shear[..., near.rows])
+    here, there = (
+        shear.take(rows, axis=-1, mode="clip") for rows in (near.rows, critical[near.rows])
+    )
+    np.copyto(here, there, where=near.serves)
+    checked[..., near.rows] = here
     return checked
 
 
@@ -279,30 +294,35 @@ def case_peaks(cases: CaseEffects) -> tuple[Floats, Floats]:
 
     Between two stations the moment of a steady load stays below the tangents at both.
     """
-    if not cases.moment.size:
-        empty = np.zeros(cases.end_moments.shape[:2])
-        return empty, empty
-    return _peaks(cases, cases.moment, cases.shear), _peaks(cases, -cases.moment, -cases.shear)
+    peaks = np.zeros((2, *cases.end_moments.shape[:2]))
+    if cases.moment.size:
+        first = starts(cases.beam)
+        beams = cases.beam[first]
+        peaks[0, :, beams] = np.maximum.reduceat(cases.moment, first, axis=1).T
+        peaks[1, :, beams] = -np.minimum.reduceat(cases.moment, first, axis=1).T
+        for peak, sign in zip(peaks, (1.0, -1.0), strict=True):
+            case, beam, bound = _bounds_between(cases, sign)
+            np.maximum.at(peak, (case, beam), bound)
+    sagging, hogging = np.maximum(peaks, 0.0)
+    return sagging, hogging
 
 
-def _peaks(cases: CaseEffects, moment: Floats, shear: Floats) -> Floats:
-    """Greatest moment of each case on each beam, between stations too (K, B)."""
-    rise, fall = shear[:, :-1], shear[:, 1:]
+def _bounds_between(cases: CaseEffects, sign: float) -> tuple[Ints, Ints, Floats]:
+    """Upper bounds of the sagging (sign 1) or hogging (sign -1) moment between two stations where
+    the shear of a case turns: the cases, beams and bounds."""
+    rising, falling = cases.shear[:, :-1] * sign > 0.0, cases.shear[:, 1:] * sign < 0.0
     gap = np.diff(cases.x)
-    turns = (cases.beam[1:] == cases.beam[:-1]) & (rise > 0.0) & (fall < 0.0) & (gap > 0.0)
-    case, row = np.nonzero(turns)
-    before, after = rise[case, row], fall[case, row]
-    low, high, width = moment[case, row], moment[case, row + 1], gap[row]
+    held = (cases.beam[1:] == cases.beam[:-1]) & (gap > 0.0)
+    case, row = np.nonzero(rising & falling & held)
+    before, after = cases.shear[case, row] * sign, cases.shear[case, row + 1] * sign
+    low, high, width = cases.moment[case, row] * sign, cases.moment[case, row + 1] * sign, gap[row]
     reach = np.clip((high - low - after * width) / (before - after), 0.0, width)
-    bounded = moment.copy()
-    bounded[case, row] = np.maximum(low + before * reach, low)
-    peaks = np.zeros(cases.end_moments.shape[:2])
-    first = np.flatnonzero(np.diff(cases.beam, prepend=-1))
-    peaks[:, cases.beam[first]] = np.maximum.reduceat(bounded, first, axis=1)
-    return np.maximum(peaks, 0.0)
+    return case, cases.beam[row], np.maximum(low + before * reach, low)
 
 
-def turning_places(effects: Effects, *, alone: bool = True) -> tuple[Ints, Floats]:
+def turning_places(
+    cases: CaseEffects, factors: Floats, *, alone: bool = True
+) -> tuple[Ints, Floats]:
     """Places between stations where the moment of a combination, or of a case alone, turns.
 
     Between two stations a case keeps the factor that fits the sum of its moments at both, and
@@ -310,8 +330,10 @@ def turning_places(effects: Effects, *, alone: bool = True) -> tuple[Ints, Float
 
     Parameters
     ----------
-    effects
-        Effects at stations.
+    cases
+        Effects of each case alone at stations (K, N).
+    factors
+        Unfavourable and favourable factor of each case (C, K, 2).
     alone
         Whether the moments of the cases alone are looked at, too.
 
@@ -320,11 +342,11 @@ def turning_places(effects: Effects, *, alone: bool = True) -> tuple[Ints, Float
     tuple
         Row of the beam and x [mm] of each, to be made stations.
     """
-    greater, lesser = effects.greater, effects.lesser
+    greater, lesser = factors.max(axis=2), factors.min(axis=2)
     if alone:
         single = np.eye(greater.shape[1])
         greater, lesser = np.concatenate([greater, single]), np.concatenate([lesser, single])
-    found = [_turns(effects.cases, greater, lesser, sign) for sign in (1.0, -1.0)]
+    found = [_turns(cases, greater, lesser, sign) for sign in (1.0, -1.0)]
     beam = np.concatenate([part[0] for part in found])
     x = np.concatenate([part[1] for part in found])
     x = np.round(x, 3)
@@ -337,21 +359,30 @@ def turning_places(effects: Effects, *, alone: bool = True) -> tuple[Ints, Float
 
 def _turns(cases: CaseEffects, greater: Floats, lesser: Floats, sign: float) -> tuple[Ints, Floats]:
     """Where the greatest sagging (sign 1) or hogging (sign -1) moment lies within an interval."""
-    gap = np.diff(cases.x)
-    rows = np.flatnonzero((cases.beam[1:] == cases.beam[:-1]) & (gap > 1.0))
-    moment, shear = cases.moment * sign, cases.shear * sign
-    worse = moment[:, rows] + moment[:, rows + 1] > 0.0
+    rows = _may_turn(cases, sign) if lesser.min(initial=0.0) >= 0.0 else np.arange(cases.x.size - 1)
+    gap = cases.x[rows + 1] - cases.x[rows]
+    rows = rows[(cases.beam[rows + 1] == cases.beam[rows]) & (gap > 1.0)]
+    moment, after = cases.moment[:, rows] * sign, cases.moment[:, rows + 1] * sign
+    worse = moment + after > 0.0
 
     def combined(effect: Floats) -> Floats:
         return _weighted(greater, effect * worse) + _weighted(lesser, effect * ~worse)
 
-    first, last = combined(shear[:, rows]), combined(shear[:, rows + 1])
+    first, last = (combined(cases.shear[:, at] * sign) for at in (rows, rows + 1))
     combination, interval = np.nonzero((first > 0.0) & (last < 0.0))
     before, after = first[combination, interval], last[combination, interval]
     full = np.where(worse[:, interval], greater.T[:, combination], lesser.T[:, combination])
-    start = (full * moment[:, rows[interval]]).sum(axis=0)
-    part, width = before / (before - after), gap[rows[interval]]
+    start = (full * moment[:, interval]).sum(axis=0)
+    at = rows[interval]
+    part, width = before / (before - after), cases.x[at + 1] - cases.x[at]
     apex = start + before * part * width / 2.0
     inner = (part > 1e-3) & (part < 1.0 - 1e-3) & (apex > 0.0)
-    at = rows[interval]
     return cases.beam[at[inner]], (cases.x[at] + part * width)[inner]
+
+
+def _may_turn(cases: CaseEffects, sign: float) -> Ints:
+    """Intervals at whose start some case's shear rises the moment of that sense and at whose end
+    some case's lowers it: no sum of theirs, each times a factor not below 0, turns elsewhere."""
+    rising = (cases.shear[:, :-1] * sign > 0.0).any(axis=0)
+    falling = (cases.shear[:, 1:] * sign < 0.0).any(axis=0)
+    return np.flatnonzero(rising & falling)

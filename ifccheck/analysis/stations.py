@@ -206,6 +206,13 @@ def rows_before(station_beam: Ints, station_x: Floats, beam: Ints, x: Floats) ->
     return np.maximum(_search_within(station_x, first, after, x + SAME_PLACE) - 1, first)
 
 
+def starts(sorted_values: Ints) -> Ints:
+    """First row of each stretch of equal values."""
+    new = np.ones(sorted_values.size, dtype=np.bool_)
+    np.not_equal(sorted_values[1:], sorted_values[:-1], out=new[1:])
+    return np.flatnonzero(new)
+
+
 def critical_rows(stations: StationTable, start: Floats, end: Floats) -> Ints:
     """Row of the station whose shear may be used at each station.
 

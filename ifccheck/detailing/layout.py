@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Iterable, Sequence
 from dataclasses import dataclass, field
-from typing import Literal
+from typing import Literal, NamedTuple
 
 from ifccheck.beam import (
     Anchor,
@@ -39,8 +39,7 @@ UNKNOWN_STIRRUP = 12.0
 """Diameter that bars are kept clear of where no one states the stirrups [mm]"""
 
 
-@dataclass(frozen=True, slots=True)
-class Layout:
+class Layout(NamedTuple):
     """Described reinforcement of a beam with its places."""
 
     bars: tuple[Bars, ...] = ()

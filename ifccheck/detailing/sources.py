@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Callable, Iterable, Sequence
 from dataclasses import dataclass
+from typing import NamedTuple
 
 from ifccheck.beam import (
     Bars,
@@ -23,8 +24,7 @@ AGREEMENT = 0.05
 """Sources whose totals differ by no more than this are taken to agree."""
 
 
-@dataclass(frozen=True, slots=True)
-class Chosen:
+class Chosen(NamedTuple):
     """The source that rates a beam; None where there is none, and why."""
 
     reinforcement: Reinforcement | None

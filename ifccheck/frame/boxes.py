@@ -101,7 +101,8 @@ def near_pairs(first: Boxes, second: Boxes) -> tuple[Ints, Ints]:
     """Rows of the pairs whose upright boxes in the building, and in each other's axes, meet."""
     one, other = _meeting_upright(first, second)
     a, b = first.take(one), second.take(other)
-    apart = _apart_along(a, b) | _apart_along(b, a)
+    turn = _turn(a, b)
+    apart = _apart_along(a, b, turn) | _apart_along(b, a, turn.swapaxes(1, 2))
     return one[~apart], other[~apart]
 
 
@@ -124,10 +125,13 @@ def _upright(boxes: Boxes) -> tuple[Floats, Floats]:
     return boxes.centre - reach, boxes.centre + reach
 
 
-def _apart_along(a: Boxes, b: Boxes) -> Bools:
-    """Whether one of the axes of a shows a gap between the two boxes (P)."""
+def _apart_along(a: Boxes, b: Boxes, turn: Floats) -> Bools:
+    """Whether one of the axes of a shows a gap between the two boxes (P).
+
+    ``turn`` holds the axes of b in those of a.
+    """
     distance = np.abs(np.einsum("pkd,pd->pk", a.axes, b.centre - a.centre))
-    reach = a.half + np.einsum("pj,pkj->pk", b.half, np.abs(_turn(a, b)))
+    reach = a.half + np.einsum("pj,pkj->pk", b.half, np.abs(turn))
     return np.asarray((distance > reach).any(axis=1))
 
 

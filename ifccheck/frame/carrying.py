@@ -7,9 +7,8 @@ itself carried. Beams that only lean on each other are carried by none.
 from __future__ import annotations
 
 from collections import defaultdict
-from collections.abc import Iterable, Mapping, Sequence
-from dataclasses import replace
-from typing import Literal, NamedTuple
+from collections.abc import Iterable, Mapping, Sequence, Set
+from typing import Literal
 
 from ifccheck.beam import Beam, Contact, Model, OutOfScope, SupportKind
 from ifccheck.frame.contacts import contacts_of_others, find_contacts, is_seat
@@ -34,11 +33,8 @@ DIRECT_CLASSES = ("IfcColumn", "IfcWall", "IfcFooting", "IfcPile", "IfcBearing")
 """What presses back over the depth of an end that meets its face."""
 
 
-class _Seat(NamedTuple):
-    """A contact that may hold an end, and the beam that would carry it; None for the ground."""
-
-    contact: Contact
-    carrier: str | None
+_Judged = tuple[Contact, str | None]
+"""A contact, and the key of the beam that would carry by it; None for the ground"""
 
 
 def contacts_of(model: Model, stated: Stated) -> dict[str, tuple[Contact, ...]]:
@@ -86,20 +82,25 @@ def carried_contacts(
     everything = {**others, **contacts}
     judged = _judged(everything, _keys(everything, beams), _left_out(out_of_scope), beams)
     seats = {
-        key: [each for each in own if not each.contact.doubt and is_seat(each.contact)]
+        key: [each for each in own if not each[0].doubt and is_seat(each[0])]
         for key, own in judged.items()
     }
     carried = _carried(seats, stated)
-    return {
-        key: tuple(_with_doubt(contact, carrier, carried) for contact, carrier in judged[key])
-        for key in contacts
-    }
+    return {key: _with_doubts(judged[key], carried) for key in contacts}
 
 
-def _with_doubt(contact: Contact, carrier: str | None, carried: set[str]) -> Contact:
-    if contact.doubt or carrier is None or carrier in carried or not is_seat(contact):
-        return contact
-    return replace(contact, doubt=NOT_CARRIED)
+def _with_doubts(judged: Sequence[_Judged], carried: Set[str]) -> tuple[Contact, ...]:
+    return tuple(
+        [
+            contact._replace(doubt=NOT_CARRIED)
+            if carrier is not None
+            and carrier not in carried
+            and not contact.doubt
+            and is_seat(contact)
+            else contact
+            for contact, carrier in judged
+        ]
+    )
 
 
 def _keys(everything: Mapping[str, Sequence[Contact]], beams: Sequence[Beam]) -> dict[int, str]:
@@ -117,20 +118,28 @@ def _judged(
     keys: Mapping[int, str],
     left_out: Mapping[int, str],
     beams: Sequence[Beam],
-) -> dict[str, list[_Seat]]:
+) -> dict[str, list[_Judged]]:
     """Every contact with the beam that would carry by it, and what speaks against it at once."""
     steps = {key: step for step, key in keys.items()}
     meeting = _ends_meeting(everything, steps)
-    judged: dict[str, list[_Seat]] = {}
-    for key, own in everything.items():
-        judged[key] = []
-        for contact in own:
-            reason = left_out.get(contact.other_step, "")
-            carrier = None if reason in STANDING_USES else keys.get(contact.other_step)
-            doubt = contact.doubt or _doubt(contact, steps[key], reason, meeting)
-            contact = contact if doubt == contact.doubt else replace(contact, doubt=doubt)
-            judged[key].append(_Seat(contact, carrier))
-    return judged
+    return {
+        key: [_judged_alone(contact, steps[key], keys, left_out, meeting) for contact in own]
+        for key, own in everything.items()
+    }
+
+
+def _judged_alone(
+    contact: Contact,
+    step: int,
+    keys: Mapping[int, str],
+    left_out: Mapping[int, str],
+    meeting: Set[tuple[int, int]],
+) -> _Judged:
+    reason = left_out.get(contact.other_step, "")
+    carrier = None if reason in STANDING_USES else keys.get(contact.other_step)
+    if not contact.doubt and (doubt := _doubt(contact, step, reason, meeting)):
+        contact = contact._replace(doubt=doubt)
+    return contact, carrier
 
 
 def _ends_meeting(
@@ -145,7 +154,7 @@ def _ends_meeting(
     }
 
 
-def _doubt(contact: Contact, step: int, reason: str, meeting: set[tuple[int, int]]) -> str:
+def _doubt(contact: Contact, step: int, reason: str, meeting: Set[tuple[int, int]]) -> str:
     if reason and reason not in (*STANDING_USES, *SPANNING_MATERIALS):
         return f"it is left out as {reason}"
     if contact.side == "end" and (contact.other_step, step) in meeting and is_seat(contact):
@@ -153,21 +162,21 @@ def _doubt(contact: Contact, step: int, reason: str, meeting: set[tuple[int, int
     return ""
 
 
-def _carried(seats: Mapping[str, Sequence[_Seat]], stated: Stated) -> set[str]:
+def _carried(seats: Mapping[str, Sequence[_Judged]], stated: Stated) -> set[str]:
     """Keys of all that is carried, found from the ground up."""
     held: dict[str, set[End]] = defaultdict(set)
     resting: dict[str, list[tuple[str, End]]] = defaultdict(list)
     for key, own in seats.items():
         said = stated.get(key, {})
         held[key] |= {end for end in ENDS if said.get(end, "free") != "free"}
-        for seat in own:
-            place = seat.contact.place
+        for contact, carrier in own:
+            place = contact.place
             if place == "between" or said.get(place) == "free":
                 continue
-            if seat.carrier is None:
+            if carrier is None:
                 held[key].add(place)
             else:
-                resting[seat.carrier].append((key, place))
+                resting[carrier].append((key, place))
     carried: set[str] = set()
     waiting = [key for key in seats if _stands(held[key], stated.get(key, {}))]
     while waiting:

@@ -3,9 +3,8 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass
 from operator import attrgetter
-from typing import Literal
+from typing import Literal, NamedTuple
 
 from ifccheck.beam import Beam, Contact, Given, Line, Reason, Remark, Span, Support
 from ifccheck.frame.boxes import section_extent
@@ -19,8 +18,7 @@ UNKNOWN_BEARING = 0.05
 """Part of a beam's length that a bearing may cover of which neither model nor brief tells."""
 
 
-@dataclass(frozen=True, slots=True)
-class Standing:
+class Standing(NamedTuple):
     """How one beam stands alone."""
 
     line: Line
@@ -39,8 +37,7 @@ class Standing:
         return self.line.spans[0]
 
 
-@dataclass(frozen=True, slots=True)
-class _Seating:
+class _Seating(NamedTuple):
     """How one end is seated."""
 
     centre: float
@@ -118,7 +115,7 @@ def _seating(
 def _seats(end: End, contacts: Sequence[Contact]) -> list[Contact]:
     """What surely holds an end; without such, what it faces and that may be its support."""
     here = [contact for contact in contacts if contact.place == end]
-    sure = [contact for contact in here if is_seat(contact) and not contact.doubt]
+    sure = [contact for contact in here if not contact.doubt and is_seat(contact)]
     return sure or [
         contact
         for contact in here

@@ -8,6 +8,7 @@ from dataclasses import dataclass
 import numpy as np
 
 from ifccheck.ifc.bar_paths import Bools, Floats, Ints
+from ifccheck.ifc.step_cursors import Cursors
 from ifccheck.ifc.step_table import StepTable
 
 
@@ -76,23 +77,33 @@ def read_points(
 
 def _items(table: StepTable, shape: Ints) -> tuple[Bools, Ints]:
     """Whether each shape is one item, and that."""
-    product = table.cursors(shape, "IFCPRODUCTDEFINITIONSHAPE")
+    product = table.starts(shape)
+    product.same_text(_until_representations)
+    representation = product.reference()
+    product.tokens(b")", b")", b";")
+    body = table.starts(np.where(product.plain, representation, 0))
+    body.same_text(_until_items)
+    item = body.reference()
+    body.tokens(b")", b")", b";")
+    return body.plain, np.where(body.plain, item, 0)
+
+
+def _until_representations(product: Cursors) -> None:
+    product.tokens(b"=", b"IFCPRODUCTDEFINITIONSHAPE", b"(")
     product.text_or_nothing()
     product.tokens(b",")
     product.text_or_nothing()
     product.tokens(b",", b"(")
-    representation = product.reference()
-    product.tokens(b")", b")", b";")
-    body = table.cursors(np.where(product.plain, representation, 0), "IFCSHAPEREPRESENTATION")
+
+
+def _until_items(body: Cursors) -> None:
+    body.tokens(b"=", b"IFCSHAPEREPRESENTATION", b"(")
     body.reference_or_nothing()
     body.tokens(b",")
     body.text_or_nothing()
     body.tokens(b",")
     body.text_or_nothing()
     body.tokens(b",", b"(")
-    item = body.reference()
-    body.tokens(b")", b")", b";")
-    return body.plain, np.where(body.plain, item, 0)
 
 
 def _mapped(table: StepTable, item: Ints) -> tuple[Bools, Ints, Ints]:

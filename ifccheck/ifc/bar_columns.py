@@ -83,8 +83,10 @@ class BarReaders:
         Raises UnreadableError.
         """
         if step_id not in self._parents:
-            placement = self.context.file.by_id(step_id)
-            matrix = self.context.placements.placement(placement)
+            placements = self.context.placements
+            matrix = placements.known(step_id)
+            if matrix is None:
+                matrix = placements.placement(self.context.file.by_id(step_id))
             self._parents[step_id] = self.outer.index(matrix)
         return self._parents[step_id]
 

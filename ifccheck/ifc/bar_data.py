@@ -246,6 +246,8 @@ class BarData:
 
 def _looked_up(of: Mapping[int, int], ids: Sequence[int]) -> Ints:
     """What each has in a mapping, 0 for nothing."""
+    if not of:
+        return np.zeros(len(ids), dtype=np.intp)
     return np.fromiter(map(of.get, ids, repeat(0)), dtype=np.intp, count=len(ids))
 
 

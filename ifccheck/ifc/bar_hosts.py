@@ -12,6 +12,7 @@ from typing import Any, Literal
 import numpy as np
 
 from ifccheck.ifc.bar_paths import Bools, Ints
+from ifccheck.ifc.equal_rows import first_of_each_number
 from ifccheck.ifc.relations import Relations
 
 Tie = Literal["part", "beside", "elsewhere", "loose"]
@@ -81,10 +82,11 @@ class Hosts:
         hosts = [LOOSE]
         number = np.zeros(len(step_ids), dtype=np.intp)
         single = np.flatnonzero(count == 1)
-        wholes, first, inverse = np.unique(whole[single], return_index=True, return_inverse=True)
-        number[single] = len(hosts) + inverse.reshape(-1)
-        for at, row in zip(wholes.tolist(), single[first].tolist(), strict=True):
-            hosts.append(self._through(at, frozenset((int(step_ids[row]),))))
+        first, inverse = first_of_each_number(whole[single])
+        number[single] = len(hosts) + inverse
+        first = single[first]
+        for at, part in zip(whole[first].tolist(), step_ids[first].tolist(), strict=True):
+            hosts.append(self._through(at, frozenset((part,))))
         for row in np.flatnonzero(count > 1).tolist():
             number[row] = len(hosts)
             hosts.append(self.of(int(step_ids[row])))

@@ -11,6 +11,7 @@ import numpy as np
 import numpy.typing as npt
 
 from ifccheck.ifc.entity import Entity, UnreadableError, get, label, several
+from ifccheck.ifc.many_vectors import crosses, dots
 from ifccheck.ifc.placements import Matrix, rigid, unit
 from ifccheck.ifc.units import ModelUnits
 
@@ -284,24 +285,20 @@ def arc_frames(points: Floats, starts: Ints) -> tuple[Floats, Floats, Floats, Fl
     """
     a, b, c = points[starts], points[starts + 1], points[starts + 2]
     ab, ac = b - a, c - a
-    normal = np.cross(ab, ac)
-    square = (normal**2).sum(axis=1)
-    reach = (ab**2).sum(axis=1) * (ac**2).sum(axis=1)
+    normal = crosses(ab, ac)
+    square, first, second = dots(normal, normal), dots(ab, ab), dots(ac, ac)
+    reach = first * second
     flat = square <= 1e-12 * reach
     safe = np.where(flat, 1.0, square)
     centre = (
         a
-        + (
-            (ac**2).sum(axis=1)[:, None] * np.cross(normal, ab)
-            - (ab**2).sum(axis=1)[:, None] * np.cross(normal, ac)
-        )
+        + (second[:, None] * crosses(normal, ab) - first[:, None] * crosses(normal, ac))
         * (0.5 / safe)[:, None]
     )
     across = a - centre
-    turned = np.cross(normal / np.sqrt(safe)[:, None], across)
+    turned = crosses(normal / np.sqrt(safe)[:, None], across)
     angles = [
-        np.arctan2(((p - centre) * turned).sum(axis=1), ((p - centre) * across).sum(axis=1))
-        % (2.0 * math.pi)
+        np.arctan2(dots(p - centre, turned), dots(p - centre, across)) % (2.0 * math.pi)
         for p in (b, c)
     ]
     half = np.stack([angles[0], angles[1] - angles[0]], axis=1)

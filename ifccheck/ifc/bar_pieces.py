@@ -10,6 +10,7 @@ import numpy.typing as npt
 
 from ifccheck.ifc.bar_paths import Bools, Floats, Ints
 from ifccheck.ifc.bar_samples import Samples, offsets, spread
+from ifccheck.ifc.many_vectors import dots, sizes
 
 LEAST_STEP = 1e-3
 """Shorter steps [mm] of a centre line are left out."""
@@ -109,7 +110,7 @@ class Pieces:
 def make_pieces(row: Ints, start: Floats, end: Floats, straight: Bools) -> Pieces:
     """Give pieces their direction and length."""
     along = end - start
-    length = np.sqrt((along**2).sum(axis=1))
+    length = sizes(along)
     direction = along / np.where(length > 0.0, length, 1.0)[:, None]
     return Pieces(row, start, end, direction, length, straight)
 
@@ -118,7 +119,7 @@ def cut_into_pieces(lines: CentreLines) -> Pieces:
     """Cut centre lines into straight pieces, joining straight steps in one line."""
     index = np.flatnonzero(lines.row[1:] == lines.row[:-1])
     step = lines.points[index + 1] - lines.points[index]
-    index = index[(step**2).sum(axis=1) > LEAST_STEP**2]
+    index = index[dots(step, step) > LEAST_STEP**2]
     steps = make_pieces(
         lines.row[index], lines.points[index], lines.points[index + 1], ~lines.arc[index]
     )
@@ -128,7 +129,7 @@ def cut_into_pieces(lines: CentreLines) -> Pieces:
 def _goes_on(pieces: Pieces, cosine: float) -> Bools:
     """Whether each piece goes on straight from the one before."""
     result = np.zeros(len(pieces.row), dtype=bool)
-    turn = (pieces.direction[1:] * pieces.direction[:-1]).sum(axis=1)
+    turn = dots(pieces.direction[1:], pieces.direction[:-1])
     result[1:] = (
         (pieces.row[1:] == pieces.row[:-1])
         & pieces.straight[1:]

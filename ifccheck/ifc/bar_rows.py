@@ -5,6 +5,7 @@ from __future__ import annotations
 from dataclasses import dataclass
 
 import numpy as np
+import numpy.typing as npt
 
 from ifccheck.ifc.bar_hosts import BarHosts, Tie
 from ifccheck.ifc.bar_paths import Bools, Floats, Ints
@@ -12,7 +13,7 @@ from ifccheck.ifc.bar_pieces import CentreLines, cut_into_pieces, place
 from ifccheck.ifc.bar_samples import Samples, offsets, sample, spread
 from ifccheck.ifc.bar_table import BarTable
 from ifccheck.ifc.beam_frames import BeamFrames, part_inside
-from ifccheck.ifc.equal_rows import first_of_each
+from ifccheck.ifc.equal_rows import first_of_each, first_of_each_number
 
 INSIDE_TOLERANCE = 5.0
 """A bar may lie outside the box of its beam by this [mm] and still lie in it."""
@@ -75,10 +76,19 @@ class BarPlaces:
 
     def motions(self, rows: Rows) -> tuple[Floats, Floats]:
         """Rotations (R, 3, 3) and translations (R, 3) of strands into the axes of their beams."""
+        turn, rotations = self._turns(rows)
+        return rotations[turn], self._translations(rows)
+
+    def _turns(self, rows: Rows) -> tuple[Ints, Floats]:
+        """Which rotation each strand has in the axes of its beam, and those rotations."""
+        turn, rotations = self.table.turn[rows.strand], self.table.rotations
+        first, number = first_of_each_number(rows.beam * len(rotations) + turn)
+        return number, self.frames.rotation[rows.beam[first]] @ rotations[turn[first]]
+
+    def _translations(self, rows: Rows) -> Floats:
         to_beam = self.frames.rotation[rows.beam]
-        rotation = to_beam @ self.table.rotation[rows.strand]
         offset = self.table.translation[rows.strand] - self.frames.origin[rows.beam]
-        return rotation, np.einsum("rij,rj->ri", to_beam, offset)
+        return np.asarray(np.einsum("rij,rj->ri", to_beam, offset))
 
     def centre_lines(self, rows: Rows) -> CentreLines:
         """The centre lines of strands in the axes of their beams."""
@@ -90,18 +100,16 @@ class BarPlaces:
 
         Returns for each row the row that stands for it, and how far beyond that it lies [mm].
         """
-        rotation, translation = self.motions(rows)
+        turn, rotations = self._turns(rows)
+        translation = self._translations(rows)
+        _, rotation = first_of_each(_in_steps(*(rotations.reshape(-1, 9).T * ROTATION_STEPS)))
         prismatic = self.frames.prismatic()[rows.beam]
         own = np.where(prismatic, -1, np.arange(len(rows.beam)))
-        columns = (
-            rows.beam,
-            own,
-            self.table.path[rows.strand],
-            *(rotation.reshape(-1, 9).T * ROTATION_STEPS),
-            *(translation[:, 1:].T * PLACE_STEPS),
-            self.diameter[rows.strand] * PLACE_STEPS,
+        place = _in_steps(
+            *(translation[:, 1:].T * PLACE_STEPS), self.diameter[rows.strand] * PLACE_STEPS
         )
-        key = np.column_stack([np.rint(column).astype(np.int64) for column in columns])
+        path = self.table.path[rows.strand]
+        key = np.column_stack((rows.beam, own, path, rotation[turn], place))
         first, inverse = first_of_each(key)
         stands_for = first[inverse]
         return stands_for, translation[:, 0] - translation[stands_for, 0]
@@ -115,6 +123,11 @@ class BarPlaces:
             self.table.translation[strands],
             self.diameter[strands],
         )
+
+
+def _in_steps(*columns: Floats) -> npt.NDArray[np.int64]:
+    """Columns rounded to whole numbers, side by side."""
+    return np.column_stack([np.rint(column).astype(np.int64) for column in columns])
 
 
 def find_rows(places: BarPlaces, hosts: BarHosts) -> Found:

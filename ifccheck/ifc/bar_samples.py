@@ -29,6 +29,16 @@ class PathTable:
         """How many lines."""
         return len(self.first) - 1
 
+    def take(self, kept: Ints) -> PathTable:
+        """Some of the lines, in their order."""
+        counts = np.diff(self.first)
+        line = np.repeat(np.arange(len(counts)), counts)
+        held = np.zeros(len(counts), dtype=bool)
+        held[kept] = True
+        index = np.cumsum(held[line]) - 1
+        arcs = self.arcs[held[line[self.arcs]]]
+        return PathTable(self.points[held[line]], offsets(counts[kept]), index[arcs])
+
     def with_more(self, more: PathTable) -> PathTable:
         """Return these lines and more behind them."""
         offset = len(self.points)

@@ -9,11 +9,12 @@ from typing import TypeVar
 import numpy as np
 
 from ifccheck.ifc.bar_columns import BarColumns, BarReaders, Gathered, concatenated
-from ifccheck.ifc.bar_paths import Floats, Ints
+from ifccheck.ifc.bar_paths import Bools, Floats, Ints
 from ifccheck.ifc.bar_samples import PathTable
 from ifccheck.ifc.bar_shapes import FARTHEST
 from ifccheck.ifc.bar_sizes import BarSize, Grade
 from ifccheck.ifc.context import Context
+from ifccheck.ifc.equal_rows import first_of_each_number
 from ifccheck.ifc.plain_bars import read_plain_bars
 from ifccheck.ifc.step_table import StepTable
 from ifccheck.ifc.thorough_bars import read_thoroughly
@@ -45,12 +46,19 @@ class BarTable:
     bar: Ints
     """Bar of each strand (S)."""
     path: Ints
-    rotation: Floats
-    """(S, 3, 3)"""
+    turn: Ints
+    """Index into ``rotations``."""
+    rotations: Floats
+    """(D, 3, 3)"""
     translation: Floats
     """(S, 3) [mm]"""
     unreadable: Mapping[int, str]
     """What is wrong with products that could not be read, by their place."""
+
+    @property
+    def rotation(self) -> Floats:
+        """Rotation of each strand (S, 3, 3)."""
+        return self.rotations[self.turn]
 
     def label(self, bar: int) -> str:
         """What people call a bar."""
@@ -87,9 +95,10 @@ def gather_bars(context: Context, bars: Ints, statements: StepTable | None = Non
 
 def _within_reach(table: BarTable) -> BarTable:
     """The table without strands that stand nowhere: their coordinates are no lengths."""
-    size = np.maximum(np.abs(table.translation).max(axis=1, initial=0.0), 0.0)
-    size = np.maximum(size, np.abs(table.rotation).max(axis=(1, 2), initial=0.0))
-    near = size <= FARTHEST  # false for what is no number
+    turned = np.abs(table.rotations).reshape(-1, 9).max(axis=1) <= FARTHEST
+    near: Bools = turned[table.turn]
+    for column in table.translation.T:
+        near &= np.abs(column) <= FARTHEST  # false for what is no number
     if near.all():
         return table
     lost = {int(table.product[bar]): "stands nowhere" for bar in table.bar[~near].tolist()}
@@ -97,7 +106,7 @@ def _within_reach(table: BarTable) -> BarTable:
         table,
         bar=table.bar[near],
         path=table.path[near],
-        rotation=table.rotation[near],
+        turn=table.turn[near],
         translation=table.translation[near],
         unreadable={**table.unreadable, **lost},
     )
@@ -105,7 +114,7 @@ def _within_reach(table: BarTable) -> BarTable:
 
 def _table(readers: BarReaders, bars: Ints, found: Gathered) -> BarTable:
     columns = found.columns
-    rotation, translation = _motions(readers, columns)
+    turn, rotations, translation = _motions(readers, columns)
     size = np.array([data.size for data in columns.data], dtype=np.intp)
     grade = np.array([data.grade for data in columns.data], dtype=np.intp)
     size, sizes = _by_appearance(size[columns.datum], readers.data.sizes)
@@ -124,28 +133,29 @@ def _table(readers: BarReaders, bars: Ints, found: Gathered) -> BarTable:
         paths=readers.paths(),
         bar=columns.bar,
         path=columns.path,
-        rotation=rotation,
+        turn=turn,
+        rotations=rotations,
         translation=translation,
         unreadable=dict(sorted(found.unreadable.items())),
     )
 
 
-def _motions(readers: BarReaders, columns: BarColumns) -> tuple[Floats, Floats]:
-    """Rotation and translation of each strand."""
+def _motions(readers: BarReaders, columns: BarColumns) -> tuple[Ints, Floats, Floats]:
+    """Which rotation each strand has, the rotations, and the translation of each strand."""
     outer, inner = columns.outer[columns.bar], columns.inner
     outers = np.array(readers.outer.all).reshape(-1, 4, 4)
     inners = np.array(readers.inner.all).reshape(-1, 4, 4)
-    pairs, pair = np.unique(outer * len(inners) + inner, return_inverse=True)
-    turns = outers[pairs // len(inners), :3, :3] @ inners[pairs % len(inners), :3, :3]
+    first, turn = first_of_each_number(outer * len(inners) + inner)
+    rotations = outers[outer[first], :3, :3] @ inners[inner[first], :3, :3]
     place = columns.move[columns.bar] * readers.context.units.length + inners[inner, :3, 3]
     turned = np.einsum("sij,sj->si", outers[outer, :3, :3], place)
-    return turns[pair.reshape(-1)], turned + outers[outer, :3, 3]
+    return turn, rotations, turned + outers[outer, :3, 3]
 
 
 def _by_appearance(number: Ints, entries: Sequence[Entry]) -> tuple[Ints, list[Entry]]:
     """Number entries in the order in which rows use them, whichever was read first."""
-    used, first = np.unique(number, return_index=True)
-    order = used[np.argsort(first)]
+    first, _ = first_of_each_number(number)
+    order = number[np.sort(first)]
     new = np.zeros(len(entries), dtype=np.intp)
     new[order] = np.arange(len(order))
     return new[number], [entries[at] for at in order.tolist()]

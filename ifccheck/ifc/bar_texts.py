@@ -8,7 +8,6 @@ from dataclasses import dataclass
 import numpy as np
 
 from ifccheck.ifc.bar_paths import Bools, Ints
-from ifccheck.ifc.equal_rows import first_of_each_text
 from ifccheck.ifc.step_cursors import Bytes, Cursors
 from ifccheck.ifc.step_table import Rests, StepTable
 
@@ -22,34 +21,14 @@ _PLAIN = re.compile(_VALUE + rb"(?:," + _VALUE + rb"){%d}\);" % (ARGUMENTS - 1))
 
 
 @dataclass(frozen=True, slots=True)
-class Column:
-    """The text of one argument of many bars, or of some one after another (P)."""
-
-    text: bytes
-    start: Ints
-    stop: Ints
-
-    def __getitem__(self, row: int) -> bytes:
-        return self.text[self.start[row] : self.stop[row]]
-
-    def take(self, kept: Ints) -> Column:
-        """That of some of the bars."""
-        return Column(self.text, self.start[kept], self.stop[kept])
-
-    def first_of_each(self) -> tuple[Ints, Ints]:
-        """First bar of each distinct text, and which of the texts that of each bar is."""
-        return first_of_each_text(np.frombuffer(self.text, np.uint8), self.start, self.stop)
-
-
-@dataclass(frozen=True, slots=True)
 class BarTexts:
     """The arguments of the bars that are written plainly (P)."""
 
     place: Ints
     """Which of the bars asked for each is."""
-    name: Column
-    tag: Column
-    data: tuple[Column, ...]
+    name: Rests
+    tag: Rests
+    data: tuple[Rests, ...]
     """All that tells size, grade and role."""
     placement: Ints
     """STEP id; 0 for none."""
@@ -59,9 +38,9 @@ class BarTexts:
         """Some of the bars."""
         if len(kept) == len(self.place):
             return self
-        name, tag, data = self.name.take(kept), self.tag.take(kept), self.data
-        said = tuple(column.take(kept) for column in data)
-        return BarTexts(self.place[kept], name, tag, said, self.placement[kept], self.shape[kept])
+        data = tuple(column.take(kept) for column in self.data)
+        name, tag = self.name.take(kept), self.tag.take(kept)
+        return BarTexts(self.place[kept], name, tag, data, self.placement[kept], self.shape[kept])
 
 
 def read_bar_texts(table: StepTable, bars: Ints) -> BarTexts:
@@ -70,9 +49,9 @@ def read_bar_texts(table: StepTable, bars: Ints) -> BarTexts:
     rests = table.rests(cursors, bars)
     place, commas = _commas(rests)
 
-    def between(first: int, last: int) -> Column:
+    def between(first: int, last: int) -> Rests:
         """From one argument to another."""
-        return Column(rests.text, commas[:, first - 1] + 1, commas[:, last])
+        return Rests(rests.data, commas[:, first - 1] + 1, commas[:, last])
 
     return BarTexts(
         place=place,
@@ -88,14 +67,16 @@ def _commas(rests: Rests) -> tuple[Ints, Ints]:
     """Which statements are plain, and where the commas between their arguments stand."""
     data = rests.data
     signs = np.flatnonzero((data - QUOTE <= 2) | (data == COMMA) | (data == SEMICOLON))
-    structure = data[signs]
-    bounds = np.searchsorted(signs, rests.first)
-    first, number = first_of_each_text(structure, bounds[:-1], bounds[1:])
-    kinds = [structure[bounds[row] : bounds[row + 1]].tobytes() for row in first.tolist()]
-    plain: Bools = np.array([_PLAIN.fullmatch(kind) is not None for kind in kinds], dtype=bool)
-    of_plain = np.repeat(plain[number], np.diff(bounds))
-    commas = signs[of_plain & (structure == COMMA)]
-    return np.flatnonzero(plain[number]), commas.reshape(-1, ARGUMENTS - 1)
+    structure = Rests(
+        data[signs], np.searchsorted(signs, rests.start), np.searchsorted(signs, rests.stop)
+    )
+    first, number = structure.first_of_each()
+    kinds = [_PLAIN.fullmatch(structure.of(row)) for row in first.tolist()]
+    plain: Bools = np.array([kind is not None for kind in kinds], dtype=bool)
+    place = np.flatnonzero(plain[number])
+    commas = signs[structure.data == COMMA]
+    before = np.searchsorted(commas, rests.start[place])
+    return place, commas[before[:, None] + np.arange(ARGUMENTS - 1)]
 
 
 def _references(data: Bytes, commas: Ints, place: int) -> Ints:

@@ -9,6 +9,7 @@ import numpy as np
 
 from ifccheck.ifc.bar_paths import Bools, Floats, Ints
 from ifccheck.ifc.bar_pieces import CentreLines, Pieces
+from ifccheck.ifc.many_vectors import dots
 
 ALONG = math.cos(math.radians(2.0))
 """Cosine of the angle to the axis within which a piece runs along the beam."""
@@ -106,7 +107,7 @@ def _follow_end(
     left = np.flatnonzero(neighbour[run] >= 0)
     at = neighbour[run[left]]
     while len(left):
-        turn = (pieces.direction[at] * step * outward[left]).sum(axis=1)
+        turn = dots(pieces.direction[at] * step, outward[left])
         straight, thick = pieces.straight[at], diameter[left]
         reach[left] = np.maximum(reach[left], far[at, 0] * sign[left])
         hook = straight & _is_hook(turn, tail[at], thick)
@@ -132,7 +133,7 @@ def _straight_tails(pieces: Pieces, diameter: Floats, run: Ints) -> Floats:
     lost = np.zeros(len(pieces.row) + 1)
     sharp = (pieces.row[1:] == pieces.row[:-1]) & pieces.straight[1:] & pieces.straight[:-1]
     corner = np.flatnonzero(sharp)
-    turn = (pieces.direction[corner + 1] * pieces.direction[corner]).sum(axis=1)
+    turn = dots(pieces.direction[corner + 1], pieces.direction[corner])
     half = np.arccos(np.clip(turn, -0.999, 1.0)) / 2.0
     lost[corner + 1] = bend_radius(by_row[pieces.row[corner]]) * np.tan(half)
     return np.asarray(pieces.length - lost[:-1] - lost[1:])

@@ -28,6 +28,8 @@ from ifccheck.ifc.voids import VoidReader
 
 GEOMETRY, MATERIALS = "geometry", "materials"
 REINFORCING = ("IfcReinforcingBar", "IfcReinforcingMesh")
+BAR = b"=IFCREINFORCINGBAR("
+"""How a bar is most often written behind its number."""
 HOLLOW_CORE = "HOLLOWCORE"
 SPEAKS_OF_MATERIAL = re.compile(r"materi[ae]l|werkstoff|matériau|betong?güte", re.IGNORECASE)
 
@@ -177,9 +179,14 @@ class BeamReader:
         return self._types[type_id]
 
     def _hosts_bars(self, step_id: int) -> bool:
+        statements = self._context.statements
         by_id, is_any = self._context.file.by_id, self._context.classes.is_any
-        parts = self._context.relations.descendants(step_id)
-        return any(is_any(by_id(part).is_a(), REINFORCING) for part in parts)
+        for part in self._context.relations.descendants(step_id):
+            if statements is not None and statements.begins(part, BAR):
+                return True
+            if is_any(by_id(part).is_a(), REINFORCING):
+                return True
+        return False
 
     def _left_out(
         self, product: Product, identity: Identity, reason: str, evidence: str

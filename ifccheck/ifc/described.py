@@ -64,9 +64,7 @@ def read_described(
 
     ``mapping`` gives the property of a field as "Set.Property".
     """
-    places = [(name, f"{OWN_SET}.{key}") for name, key in OWN_PROPERTIES.items()]
-    places.extend(mapping.items())
-    wanted = {name for _, place in places for name in _names_of_sets(place)}
+    places, wanted = _places(mapping), sets_described(mapping)
     found: dict[int, Reinforcement] = {}
     for beam in beams:
         sets = context.properties.of(beam)
@@ -77,6 +75,17 @@ def read_described(
         if stated:
             found[beam] = _described(stated, context.units)
     return found
+
+
+def _places(mapping: Mapping[str, str]) -> list[tuple[str, str]]:
+    """Fields, each with the property that may hold it."""
+    own = [(name, f"{OWN_SET}.{key}") for name, key in OWN_PROPERTIES.items()]
+    return [*own, *mapping.items()]
+
+
+def sets_described(mapping: Mapping[str, str]) -> set[str]:
+    """Return the names of the sets that may tell of the reinforcement."""
+    return {name for _, place in _places(mapping) for name in _names_of_sets(place)}
 
 
 def _names_of_sets(place: str) -> Iterator[str]:

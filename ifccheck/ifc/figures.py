@@ -94,8 +94,10 @@ def _turned(one: Points, other: Points) -> Points | None:
         return None
     # corners compared about the middles, so that what grows to one side keeps its order
     first, second = one - one.mean(axis=0), other - other.mean(axis=0)
-    apart = [_apart(first, np.roll(second, -step, axis=0)) for step in range(len(other))]
-    return np.roll(other, -int(np.argmin(apart)), axis=0)
+    places = np.arange(len(one))
+    begun = second[(places[:, None] + places) % len(one)]
+    apart = ((begun - first) ** 2).sum(axis=(1, 2))
+    return other[(places + int(apart.argmin())) % len(one)]
 
 
 def between(one: Figure, other: Figure, share: float) -> Figure:

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import hashlib
+import os
 import re
 import tempfile
 from dataclasses import dataclass
@@ -15,6 +16,7 @@ import numpy as np
 from ifccheck.beam import Remark
 from ifccheck.errors import ModelError
 from ifccheck.ifc.archive import unpack
+from ifccheck.ifc.deferral import may_be_deferred
 from ifccheck.ifc.earlier import InUseError, may_hold_results, result_instances, without_instances
 from ifccheck.ifc.lexer import BYTE_ORDER_MARK, EXPORT_AGAIN, Scan, StepError, scan, shown
 from ifccheck.ifc.marks import without_intact_block
@@ -22,8 +24,10 @@ from ifccheck.ifc.step_text import escaped
 
 SUPPORTED_SCHEMAS = ("IFC2X3", "IFC4", "IFC4X3_ADD2")
 _OUTSIDE_ASCII = re.compile(rb"[\x80-\xff]+")
-_LOST = re.compile(r"Instance reference (#\d+) used by instance #(\d+) .*not found")
-"""What ifcopenshell notes of a reference that leads nowhere; it leaves it out of its list."""
+_LOST = re.compile(r"Instance reference (#-?\d+) used by instance #(\d+) .*not found")
+"""What ifcopenshell notes of a reference that leads nowhere when it parses it; it leaves it out."""
+_DELETES_OPEN_FILES = os.name != "nt"
+"""ifcopenshell holds a file open as long as it may have to parse an instance of it."""
 _STAGE = "opening"
 
 
@@ -142,18 +146,25 @@ def _scan(path: Path, data: bytes) -> Scan:
 def _parse(path: Path, data: bytes, found: Scan, on_disk: bool = False) -> _Sound:
     """Read bytes with ifcopenshell; ``on_disk`` where the file at the path holds just these."""
     readable = _readable(data)
-    in_place = on_disk and readable is data
-    file = _open(path, path) if in_place else _open_copy(path, readable)
+    deferred = readable is data and may_be_deferred(data, found)
+    if on_disk and readable is data:
+        file = _open(path, path, deferred)
+    else:
+        file = _open_copy(path, readable, deferred and _DELETES_OPEN_FILES)
     _require_all(path, data, found, file)
+    if lost := _LOST.search(ifcopenshell.get_log()):
+        raise ModelError(
+            f"{path}: #{lost[2]} refers to {lost[1]}, which is not in it; {EXPORT_AGAIN}"
+        )
     return _Sound(data, found, file)
 
 
-def _open_copy(path: Path, readable: bytes) -> Any:
+def _open_copy(path: Path, readable: bytes, deferred: bool) -> Any:
     try:
         with tempfile.TemporaryDirectory(prefix="ifccheck-") as folder:
             copy = Path(folder) / "model.ifc"
             copy.write_bytes(readable)
-            return _open(path, copy)
+            return _open(path, copy, deferred)
     except OSError as error:
         raise ModelError(
             f"{path}: cannot be copied to the temporary folder ({error.strerror or error}); "
@@ -177,18 +188,14 @@ def _readable(data: bytes) -> bytes:
     return _OUTSIDE_ASCII.sub(lambda match: escaped(match[0].decode(encoding)).encode(), data)
 
 
-def _open(path: Path, place: Path) -> Any:
+def _open(path: Path, place: Path, deferred: bool) -> Any:
+    """Open a file; ``deferred`` where its instances may be parsed when each is asked for."""
     try:
         ifcopenshell.get_log()  # what was said of earlier files
-        file = ifcopenshell.open(str(place))
+        return ifcopenshell.open(str(place), lazy=deferred)
     except (ifcopenshell.Error, OSError, RuntimeError) as error:
         cause = str(error).removesuffix(", check logs")
         raise ModelError(f"{path}: cannot be read ({cause}); {EXPORT_AGAIN}") from error
-    if lost := _LOST.search(ifcopenshell.get_log()):
-        raise ModelError(
-            f"{path}: #{lost[2]} refers to {lost[1]}, which is not in it; {EXPORT_AGAIN}"
-        )
-    return file
 
 
 def _require_all(path: Path, data: bytes, found: Scan, file: Any) -> None:

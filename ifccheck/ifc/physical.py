@@ -16,6 +16,7 @@ from ifccheck.ifc.bar_pieces import CentreLines, count_by_row
 from ifccheck.ifc.bar_rows import BarPlaces, Rows
 from ifccheck.ifc.bar_sizes import BarSize
 from ifccheck.ifc.bars import ALONG, LEAST_RUN, LONGEST_CHORD, Runs, find_runs
+from ifccheck.ifc.equal_rows import renumbered, used
 from ifccheck.ifc.measured import Measured, measure
 from ifccheck.ifc.stirrup_legs import Legs
 from ifccheck.ifc.stirrup_sets import Ties, find_ties, lies_square
@@ -57,7 +58,7 @@ def reduce_bars(places: BarPlaces, rows: Rows, findings: Findings) -> Physical:
     along = np.flatnonzero(~square)
     bars = _along(measure(places, rows.take(along), alike.lines(along), findings))
     tied = Tied(rows.take(square), alike.stands_for[square], alike.shift[square])
-    shapes, shape = np.unique(tied.stands_for, return_inverse=True)
+    shapes, shape = renumbered(tied.stands_for, len(rows.strand))
     model = measure(places, rows.take(shapes), alike.lines(shapes), findings)
     return Physical(bars, _across(model, tied, shape, bars))
 
@@ -68,7 +69,7 @@ class _Alike:
     def __init__(self, places: BarPlaces, rows: Rows) -> None:
         self._places, self._rows = places, rows
         self.stands_for, self.shift = places.alike(rows)
-        self._known = np.unique(self.stands_for)
+        self._known = used(self.stands_for, len(rows.strand))
         self._lines = places.centre_lines(rows.take(self._known))
         square = np.zeros(len(rows.strand), dtype=bool)
         square[self._known] = lies_square(self._lines)

@@ -64,6 +64,10 @@ class Placements:
             known = self._objects[step_id] = self._placed(step, known)
         return known
 
+    def known(self, step_id: int) -> Matrix | None:
+        """Return an object placement in the building by its STEP id, if it was worked out."""
+        return self._objects.get(step_id)
+
     def learn(self, step_ids: Sequence[int], matrices: Iterable[Matrix]) -> None:
         """Take over object placements in the building that were worked out elsewhere."""
         self._objects.update(zip(step_ids, matrices, strict=True))

@@ -144,13 +144,15 @@ def _read_parents(readers: BarReaders, chains: Chains) -> Shared[int]:
 
 def _read_names(readers: BarReaders, step_ids: Ints, texts: BarTexts) -> Shared[str]:
     first, number = texts.name.first_of_each()
-    nameless = np.array([texts.name[row].strip() in NAMELESS for row in first.tolist()], dtype=bool)
+    nameless = np.array(
+        [texts.name.of(row).strip() in NAMELESS for row in first.tolist()], dtype=bool
+    )
     if nameless.any():
         tag = np.where(nameless[number], texts.tag.first_of_each()[1], -1)
         first, number = first_of_each(np.column_stack((number, tag)))
 
     def read(row: int) -> str:
-        itself = _ITSELF.fullmatch(texts.name[row])
+        itself = _ITSELF.fullmatch(texts.name.of(row))
         if itself is not None:
             return itself[1].decode("ascii")
         return name_of(readers.context.file.by_id(int(step_ids[row])))

@@ -62,12 +62,14 @@ class _Extrusions:
 
     def alike(self) -> list[int]:
         """Number of each among those that differ by more than where they stand."""
-        numbers = {id(profile): at for at, profile in enumerate(self.profiles)}
-        profile = np.array([numbers[id(profile)] for profile in self.profiles], dtype=float)
         turns = [matrix[:, :3, :3].reshape(-1, 9) for matrix in (self.matrix, self.placement)]
-        rows = np.column_stack((profile, *turns, self.along))
-        known: dict[bytes, int] = {}
-        return [known.setdefault(row.tobytes(), len(known)) for row in rows]
+        rows = np.column_stack((*turns, self.along))
+        said, size = rows.tobytes(), rows.itemsize * rows.shape[1]
+        known: dict[tuple[int, bytes], int] = {}
+        return [
+            known.setdefault((id(profile), said[at : at + size]), len(known))
+            for at, profile in zip(range(0, len(said), size), self.profiles, strict=True)
+        ]
 
 
 class PlainBodies:

@@ -2,10 +2,9 @@
 
 from __future__ import annotations
 
-import re
-from collections.abc import Iterable, Iterator, Mapping, Sequence
+from collections.abc import Collection, Iterable, Iterator, Mapping, Sequence
 from dataclasses import dataclass
-from itertools import chain
+from itertools import chain, islice
 from typing import Any
 
 from ifccheck.ifc.entity import Entity, UnreadableError, get, several, text, text_at
@@ -14,7 +13,7 @@ from ifccheck.ifc.statement_patterns import (
     REFERENCE_OR_NOTHING,
     TEXT,
     TEXT_OR_NOTHING,
-    numbers_of,
+    numbers_of_each,
     references,
     statement,
 )
@@ -82,8 +81,10 @@ class Properties:
         self._statements = statements
         self._by_object: dict[int, Sets] = {}
         self._by_set: dict[int, Set] = {}
-        self._plain: dict[int, re.Match[bytes]] = {}
-        """Name and references of the sets that are written plainly."""
+        self._names: dict[int, str] = {}
+        """Of the sets that are written plainly."""
+        self._texts: dict[int, tuple[list[int], list[bytes]]] = {}
+        """Their properties and what these say, of the sets that are likely asked about."""
         self._by_text: dict[bytes, Pairs] = {}
         self._by_texts: dict[tuple[bytes, ...], Set] = {}
 
@@ -93,12 +94,22 @@ class Properties:
             self._by_object[step_id] = self._sets(self._relations.property_sets(step_id))
         return self._by_object[step_id]
 
-    def find(self, step_ids: Iterable[int]) -> None:
-        """Find the sets of many objects that will be asked about, in the file's text."""
-        if self._statements is not None:
-            sets = dict.fromkeys(chain.from_iterable(map(self._relations.property_sets, step_ids)))
-            matches = zip(sets, self._statements.matches(list(sets), SET), strict=True)
-            self._plain.update({step_id: found for step_id, found in matches if found})
+    def find(self, step_ids: Iterable[int], names: Collection[str]) -> None:
+        """Find the sets of many objects in the file's text, and what those of some names hold."""
+        if self._statements is None:
+            return
+        sets = dict.fromkeys(chain.from_iterable(map(self._relations.property_sets, step_ids)))
+        matches = zip(sets, self._statements.matches(list(sets), SET), strict=True)
+        asked: dict[int, bytes] = {}
+        for set_id, match in matches:
+            if match is not None and (name := match[1].decode("ascii").strip()):
+                self._names[set_id] = name
+                if name in names:
+                    asked[set_id] = match[2]
+        held = numbers_of_each(list(asked.values()))
+        texts = iter(self._statements.texts(list(chain.from_iterable(held))))
+        for set_id, properties in zip(asked, held, strict=True):
+            self._texts[set_id] = properties, list(islice(texts, len(properties)))
 
     def of_material(self, material_id: int) -> Sets:
         """Return the property sets of a material."""
@@ -111,8 +122,8 @@ class Properties:
         return _SetsOfObject(self, by_name)
 
     def _name(self, set_id: int) -> str:
-        if set_id in self._plain and (name := self._plain[set_id][1].decode("ascii").strip()):
-            return name
+        if set_id in self._names:
+            return self._names[set_id]
         entity = self._file.by_id(set_id)
         return text(entity, "Name") or str(entity.is_a())
 
@@ -135,16 +146,14 @@ class Properties:
 
     def _plain_values(self, set_id: int) -> Set | None:
         """The values of a set that is written plainly, those of one text read once."""
-        if set_id not in self._plain or self._statements is None:
-            return None
-        step_ids = numbers_of(self._plain[set_id][2])
-        texts = tuple(map(self._statements.text, step_ids))
-        if not all(texts):
+        step_ids, texts = self._texts.get(set_id, ((), ()))
+        if not texts or not all(texts):
             return None  # what is hidden says nothing of being the same
-        if texts not in self._by_texts:
+        key = tuple(texts)
+        if key not in self._by_texts:
             each = map(self._pairs, step_ids, texts)
-            self._by_texts[texts] = dict(pair for pairs in each for pair in pairs)
-        return self._by_texts[texts]
+            self._by_texts[key] = dict(pair for pairs in each for pair in pairs)
+        return self._by_texts[key]
 
     def _pairs(self, step_id: int, text: bytes) -> Pairs:
         """Names and values of a property; ``text`` is all of it but its number."""

@@ -4,12 +4,14 @@ from __future__ import annotations
 
 from collections import Counter
 from collections.abc import Iterator, Mapping, Sequence
-from dataclasses import replace
+from dataclasses import fields, replace
+from operator import attrgetter
 
 from ifccheck.beam import Beam, Box, Model, Reinforcement, Remark
 from ifccheck.errors import ModelError
 from ifccheck.ifc.beams import BeamReader, Identity
 from ifccheck.ifc.context import BeamFrame, Context, make_context
+from ifccheck.ifc.described import sets_described
 from ifccheck.ifc.entity import ILL_TYPED
 from ifccheck.ifc.lexer import EXPORT_AGAIN
 from ifccheck.ifc.members import MemberReader, members_of
@@ -22,9 +24,13 @@ from ifccheck.ifc.scoping import NO_CHOICE, Choice, candidates, parted
 from ifccheck.ifc.slabs import SlabReader
 from ifccheck.ifc.step_table import StepTable
 from ifccheck.ifc.storeys import Storeys
+from ifccheck.ifc.strength import GENERAL, OF_MATERIAL
 
 STAGE = "reading"
 BEAMS = ("IfcBeam",)
+
+_FIELDS = [field.name for field in fields(Beam)]
+_VALUES, _PLACE = attrgetter(*_FIELDS), _FIELDS.index("reinforcement")
 
 
 def read_model(
@@ -69,7 +75,8 @@ def _read(
     profiles, storeys = Profiles(context.placements), Storeys(context)
     bodies = PlainBodies(context, profiles, products)
     reader = BeamReader(context, profiles, storeys, opened.name, bodies)
-    context.properties.find(product.step_id for product in own)
+    asked = {GENERAL, OF_MATERIAL, *sets_described(mapping)}
+    context.properties.find((product.step_id for product in own), asked)
     beams: list[Beam] = []
     own, left_out = parted(context, storeys, own, choice)
     known: dict[int, Box] = {}
@@ -136,9 +143,16 @@ def _reinforced(
         sources = found.get(beam.step_id, ())
         if beam.ordinal:
             sources = tuple(_by_key(source, beam.key) for source in sources)
-        yield replace(beam, reinforcement=sources)
+        yield _with(beam, sources)
+
+
+def _with(beam: Beam, sources: tuple[Reinforcement, ...]) -> Beam:
+    """The same beam with reinforcement; ``replace`` takes twice as long."""
+    values = list(_VALUES(beam))
+    values[_PLACE] = sources
+    return Beam(*values)
 
 
 def _by_key(source: Reinforcement, key: str) -> Reinforcement:
     """The same reinforcement with its remarks on the beam of a repeated GlobalId."""
-    return replace(source, remarks=tuple(replace(r, beam=key) for r in source.remarks))
+    return replace(source, remarks=tuple(r._replace(beam=key) for r in source.remarks))

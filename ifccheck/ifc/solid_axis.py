@@ -16,8 +16,8 @@ import numpy as np
 from ifccheck.ifc.clips import Cloud
 from ifccheck.ifc.entity import UnreadableError
 from ifccheck.ifc.placements import Matrix
-from ifccheck.ifc.solids import Facets, Floats
-from ifccheck.ifc.vectors import Triple
+from ifccheck.ifc.solids import Facets, Floats, crossed
+from ifccheck.ifc.vectors import Triple, cross
 
 CLEARLY_LONGER = 1.1
 """The span must be this much longer than the next candidate."""
@@ -113,7 +113,7 @@ def _edges(part: Facets) -> Floats:
     count = np.diff(first, append=len(edge))
     pair = count == 2
     ridge = np.ones(len(first), dtype=np.bool_)
-    across = np.cross(normal[first[pair]], normal[first[pair] + 1])
+    across = crossed(normal[first[pair]], normal[first[pair] + 1])
     ridge[pair] = np.sqrt((across * across).sum(axis=1)) > COPLANAR
     ends = part.points[part.edges[edge[first[ridge]]]]
     return np.asarray(ends[:, 1] - ends[:, 0])
@@ -137,7 +137,7 @@ def _ways(edges: Floats, rough: Floats) -> list[tuple[float, Floats]]:
     units, sizes = units[near], sizes[near]
     found: list[tuple[float, Floats]] = []
     while len(units) and len(found) < MOST_WAYS:
-        across = np.cross(units, units[int(sizes.argmax())])
+        across = crossed(units, np.broadcast_to(units[int(sizes.argmax())], units.shape))
         same = np.sqrt((across * across).sum(axis=1)) < SAME_WAY
         way = (units[same] * sizes[same, None]).sum(axis=0)
         found.append((float(sizes[same].sum()), way / np.sqrt(way @ way)))
@@ -147,6 +147,7 @@ def _ways(edges: Floats, rough: Floats) -> list[tuple[float, Floats]]:
 
 def _frame(way: Floats) -> Floats:
     """Rows: along the way, level to its left where it is not upright, and square to both."""
-    level = math.hypot(way[0], way[1])
-    left = np.array((-way[1], way[0], 0.0)) / level if level > 1e-6 else np.array((0.0, 1.0, 0.0))
-    return np.stack([way, left, np.cross(way, left)])
+    x, y, z = way.tolist()
+    level = math.hypot(x, y)
+    left = (-y / level, x / level, 0.0) if level > 1e-6 else (0.0, 1.0, 0.0)
+    return np.array(((x, y, z), left, cross((x, y, z), left)))

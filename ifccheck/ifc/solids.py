@@ -74,7 +74,7 @@ class Facets:
     def normals(self) -> Floats:
         """Twice the area of each face, along its normal (F, 3)."""
         loops = self.points[self.sides_points]
-        twice = np.cross(loops[:, 0] - self.points[0], loops[:, 1] - self.points[0])
+        twice = crossed(loops[:, 0] - self.points[0], loops[:, 1] - self.points[0])
         faces = int(self.sides[:, 0].max()) + 1
         return np.stack(
             [np.bincount(self.sides[:, 0], twice[:, k], minlength=faces) for k in range(3)], axis=1
@@ -192,6 +192,12 @@ class Combined:
 Leaf = Facets | HalfSpace
 
 
+def crossed(one: Floats, other: Floats) -> Floats:
+    """Return vectors square to pairs of others (N, 3); np.cross is slow for few."""
+    (a, b, c), (x, y, z) = one.T, other.T
+    return np.stack([b * z - c * y, c * x - a * z, a * y - b * x], axis=1)
+
+
 def together(solids: Sequence[Solid]) -> Solid:
     """Return several solids as one."""
     whole = solids[0]
@@ -207,23 +213,25 @@ def facets(points: Cloud, faces: Iterable[Sequence[Loop]], name: str = "") -> Fa
     """
     if not np.isfinite(points).all():
         raise UnreadableError("body has corners at places that are no numbers")
-    _, kept, row = np.unique(
-        np.round(points / WELD), axis=0, return_index=True, return_inverse=True
-    )
-    row = row.reshape(-1)
-    pairs: list[tuple[int, int, int]] = []
+    kept: dict[tuple[float, ...], int] = {}
+    row = [kept.setdefault(key, len(kept)) for key in map(tuple, np.round(points / WELD).tolist())]
+    edges: dict[tuple[int, int], int] = {}
+    sides: list[tuple[int, int]] = []
     for face, loops in enumerate(faces):
         for loop in loops:
-            around = [int(row[corner]) for corner in loop]
-            sides = zip(around, (*around[1:], around[0]), strict=True)
-            pairs += [(face, first, last) for first, last in sides if first != last]
-    if not pairs:
+            around = [row[corner] for corner in loop]
+            for one, other in zip(around, (*around[1:], around[0]), strict=True):
+                if one < other:
+                    sides.append((face, edges.setdefault((one, other), len(edges)) + 1))
+                elif one > other:
+                    sides.append((face, -edges.setdefault((other, one), len(edges)) - 1))
+    if not sides:
         raise UnreadableError("body has no faces")
-    face, one, other = np.array(pairs, dtype=np.intp).T
-    ends = np.stack([np.minimum(one, other), np.maximum(one, other)], axis=1)
-    edges, edge = np.unique(ends, axis=0, return_inverse=True)
-    signed = np.where(one < other, 1, -1) * (edge.reshape(-1) + 1)
-    return Facets(points[kept], edges.astype(np.intp), np.stack([face, signed], axis=1), name)
+    first = np.full(len(kept), -1)
+    first[row[::-1]] = np.arange(len(row))[::-1]
+    return Facets(
+        points[first], np.array(list(edges), dtype=np.intp), np.array(sides, dtype=np.intp), name
+    )
 
 
 def loft(stations: Sequence[Sequence[Cloud]], name: str = "") -> Facets:

@@ -7,29 +7,27 @@ bars asks for half a million of them. What is not written in the plainest way is
 from __future__ import annotations
 
 import re
-import string
 from collections.abc import Iterator, Sequence
+from dataclasses import dataclass
 
 import numpy as np
 
 from ifccheck.ifc.bar_paths import Ints
-from ifccheck.ifc.equal_rows import first_of_each_text
-from ifccheck.ifc.lexer import Offsets, Scan
-from ifccheck.ifc.step_cursors import BLANKS, IS_BLANK, Cursors
+from ifccheck.ifc.equal_rows import first_of_each_text, of_like_width
+from ifccheck.ifc.lexer import Scan
+from ifccheck.ifc.step_bytes import Offsets
+from ifccheck.ifc.step_cursors import IS_BLANK, WORD, Bytes, Cursors
 
-_LETTERS = (string.ascii_letters + string.digits + "_").encode()
 _POWERS_OF_TEN = 10 ** np.arange(10)
 _HIDDEN_QUOTE = re.compile(rb"\\S\\'")
 _LOWER = np.uint8(0x20)
 """What tells a small letter from a capital."""
-_GOES_ON = np.isin(np.arange(256), np.frombuffer(_LETTERS, np.uint8))
-"""Signs with which the name of a class may go on."""
 SPARSE = 8
 """Numbers of statements are looked up in a table where it is not this many times as long."""
 
 
-_MARGIN = bytes(64)
-"""Behind the text of several statements, so that it is never empty and seldom read beyond."""
+_MARGIN = np.zeros(64, dtype=np.uint8)
+"""Behind several statements, so that there are always some bytes and none are read beyond."""
 
 
 class StepTable:
@@ -67,10 +65,14 @@ class StepTable:
 
     def cursors(self, ids: Ints, word: str) -> Cursors:
         """Cursors within the bracket of statements, of those that are instances of a class."""
-        rows = self.rows(ids)
-        cursors = Cursors(self._bytes, self._after_numbers[rows], rows >= 0)
+        cursors = self.starts(ids)
         cursors.tokens(b"=", word.encode(), b"(")
         return cursors
+
+    def starts(self, ids: Ints) -> Cursors:
+        """Cursors behind the numbers of statements, of those that there are."""
+        rows = self.rows(ids)
+        return Cursors(self._bytes, self._after_numbers[rows], rows >= 0)
 
     def ids_of(self, word: str) -> Ints | None:
         """Numbers of the instances of a class, from the least on; None where it cannot be told
@@ -80,15 +82,13 @@ class StepTable:
         cursors.blanks()
         if self._hides or not cursors.plain.all():
             return None
-        letters = np.frombuffer(word.encode(), np.uint8) | _LOWER
-        rows = np.arange(len(self._ids))
-        for place in (len(word) - 1, *range(len(word) - 1)):  # most classes end otherwise
-            found = self._bytes.take(cursors.at[rows] + place, mode="clip")
-            rows = rows[found | _LOWER == letters[place]]
-        rows = rows[~_GOES_ON[self._bytes.take(cursors.at[rows] + len(word), mode="clip")]]
+        last = self._bytes.take(cursors.at + len(word) - 1, mode="clip")
+        rows = np.flatnonzero(last | _LOWER == ord(word[-1]) | _LOWER)  # most end otherwise
         named = Cursors(self._bytes, cursors.at[rows], np.ones(len(rows), dtype=bool))
-        named.tokens(word.encode(), b"(")
-        return self._ids[rows] if named.plain.all() else None
+        rows = rows[named.word_stands_here(word.encode())]
+        exactly = Cursors(self._bytes, cursors.at[rows], np.ones(len(rows), dtype=bool))
+        exactly.tokens(word.encode(), b"(")
+        return self._ids[rows] if exactly.plain.all() else None
 
     def matches(
         self, ids: Sequence[int], pattern: re.Pattern[bytes]
@@ -101,17 +101,12 @@ class StepTable:
         """What stands in statements behind their numbers; empty where there is none."""
         return [self._data[start:stop] for start, stop in self._bounds(ids)]
 
-    def text(self, step_id: int) -> bytes:
-        """What stands in one statement behind its number; empty where there is none."""
-        start, stop = self._bounds_of(step_id)
-        return self._data[start:stop]
-
-    def _bounds_of(self, step_id: int) -> tuple[int, int]:
+    def begins(self, step_id: int, text: bytes) -> bool:
+        """Whether a statement is known to begin with a text behind its number."""
         table = self._row_of
-        if table is None or not 0 <= step_id < len(table):
-            return next(self._bounds((step_id,)))
-        row = table.item(step_id)
-        return (self._after_numbers.item(row), self._stops.item(row)) if row >= 0 else (0, 0)
+        if table is None or not 0 <= step_id < len(table) or (row := table.item(step_id)) < 0:
+            return False
+        return self._data.startswith(text, self._after_numbers.item(row))
 
     def _bounds(self, ids: Sequence[int]) -> Iterator[tuple[int, int]]:
         rows = self.rows(np.array(ids, dtype=np.int64))
@@ -119,44 +114,62 @@ class StepTable:
         stops = np.where(rows >= 0, self._stops[rows], starts)
         return zip(starts.tolist(), stops.tolist(), strict=True)
 
-    def rest(self, cursors: Cursors, ids: Ints) -> list[bytes]:
-        """What is left of statements from their cursors on; empty for those that are not plain."""
-        stops = np.where(cursors.plain, self._stops[self.rows(ids)], cursors.at)
-        bounds = zip(cursors.at.tolist(), stops.tolist(), strict=True)
-        return [self._data[start:stop] for start, stop in bounds]
-
     def rests(self, cursors: Cursors, ids: Ints) -> Rests:
-        """The same in one text."""
-        return Rests(self.rest(cursors, ids))
+        """What is left of statements from their cursors on; empty for those that are not plain."""
+        stop = np.where(cursors.plain, self._stops[self.rows(ids)], cursors.at)
+        return gathered(self._bytes, cursors.at, stop)
 
 
+@dataclass(frozen=True, slots=True)
 class Rests:
-    """What is left of statements, one after another in one text (N)."""
+    """What is left of statements, somewhere in one array with zeros between them (N)."""
 
-    def __init__(self, texts: Sequence[bytes]) -> None:
-        self.text = b"".join((*texts, _MARGIN))
-        self.data = np.frombuffer(self.text, np.uint8)
-        counts = np.fromiter(map(len, texts), dtype=np.intp, count=len(texts))
-        self.first: Ints = np.concatenate(([0], np.cumsum(counts))).astype(np.intp)
-        """Where each begins, and where the last ends (N + 1)."""
+    data: Bytes
+    start: Ints
+    stop: Ints
 
     def without_blanks(self) -> Rests:
         """The same without blanks and line breaks, those within texts included."""
-        text = self.text.translate(None, BLANKS)
-        if len(text) == len(self.text):
+        kept = ~IS_BLANK[self.data]
+        if kept.all():
             return self
-        kept = np.concatenate(([0], np.cumsum(~IS_BLANK[self.data])))
-        found = Rests((text,))
-        found.first = kept[self.first]
-        return found
+        before = np.concatenate(([0], np.cumsum(kept)))
+        return Rests(self.data[kept], before[self.start], before[self.stop])
+
+    def take(self, kept: Ints) -> Rests:
+        """Some of them."""
+        return Rests(self.data, self.start[kept], self.stop[kept])
 
     def of(self, row: int) -> bytes:
         """One of them."""
-        return self.text[self.first[row] : self.first[row + 1]]
+        return self.data[self.start[row] : self.stop[row]].tobytes()
 
     def first_of_each(self) -> tuple[Ints, Ints]:
         """First of each distinct one, and which of these every one is."""
-        return first_of_each_text(self.data, self.first[:-1], self.first[1:])
+        return first_of_each_text(self.data, self.start, self.stop)
+
+
+def gathered(data: Bytes, start: Ints, stop: Ints) -> Rests:
+    """Gather the bytes between offsets."""
+    width, begin = stop - start, np.zeros(len(start), dtype=np.intp)
+    parts, count = [], 0
+    for rows, words in of_like_width(width):
+        size = words * WORD
+        begin[rows] = count + np.arange(len(rows)) * size
+        parts.append(_windows(data, start[rows], width[rows], size).reshape(-1))
+        count += len(rows) * size
+    return Rests(np.concatenate((*parts, _MARGIN)), begin, begin + width)
+
+
+def _windows(data: Bytes, start: Ints, width: Ints, size: int) -> Bytes:
+    """Bytes from each offset on, with zeros behind the width of each (N, size)."""
+    if int(start.max()) + size > len(data):
+        data = np.append(data, np.zeros(size, dtype=np.uint8))
+    windows: Bytes = np.lib.stride_tricks.sliding_window_view(data, size)[start]
+    least = int(width.min())
+    behind = np.arange(least, size) >= width[:, None]
+    windows[:, least:][behind] = 0
+    return windows
 
 
 def make_step_table(data: bytes, scan: Scan) -> StepTable | None:

@@ -49,7 +49,7 @@ def stirrups_by_zone(
     served, kept = _served(model, legged, legs, thick, reaches, place)
     places = _gathered(model, served.take(kept), place[kept], thick[kept])
     _tell_left_out(model, places, served.legs.min(axis=1) > 0, legged.row, reaches)
-    found: dict[int, list[Stirrups]] = {beam: [] for beam in np.unique(places.beam).tolist()}
+    found: dict[int, list[Stirrups]] = {beam: [] for beam in dict.fromkeys(places.beam.tolist())}
     whole = places.take(np.flatnonzero(places.legs > 0))
     _tell_lonely(model, whole)
     length = model.places.frames.length[whole.beam]

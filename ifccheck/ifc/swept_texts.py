@@ -2,30 +2,16 @@
 
 from __future__ import annotations
 
-import re
-from collections.abc import Sequence
 from dataclasses import dataclass
 
 import numpy as np
 
-from ifccheck.ifc.bar_paths import Floats, Ints
-from ifccheck.ifc.bar_samples import PathTable, offsets, spread
+from ifccheck.ifc.bar_paths import PARAMETER_TOLERANCE, Bools, Floats, Ints, arc_frames
+from ifccheck.ifc.bar_samples import PathTable
 from ifccheck.ifc.bar_shapes import FARTHEST
-from ifccheck.ifc.equal_rows import first_of_each, renumbered
-from ifccheck.ifc.step_cursors import read_numbers
-from ifccheck.ifc.step_table import Rests, StepTable
-
-_TRIPLE = np.frombuffer(b"(,,),", np.uint8)
-"""The structure of the triples of a list, a comma after each."""
-_SEGMENTS = re.compile(rb"\((IFC(?:LINE|ARC)INDEX\(\([0-9,]+\)\),?)+\)")
-_SEGMENT = re.compile(rb"IFC(LINE|ARC)INDEX\(\(([0-9,]+)\)\)")
-_CURVE_END = re.compile(rb"(.*),(?:\.[FTU]\.|\$)\);", re.DOTALL)
-_LIST_ENDS = (b"));", b"),$);")
-"""How a list of points ends after its triples, in earlier schemas and with a list of tags."""
-OPEN, CLOSE, COMMA = b"(),"
-
-Order = tuple[tuple[int, ...], tuple[int, ...]]
-"""Indices of points in order from 0, and the places in that order at which arcs begin."""
+from ifccheck.ifc.many_vectors import sizes
+from ifccheck.ifc.step_table import StepTable
+from ifccheck.ifc.swept_curves import Lines, indexed_curves, polylines
 
 
 @dataclass(frozen=True, slots=True)
@@ -40,160 +26,71 @@ class SweptSolids:
 
 
 @dataclass(frozen=True, slots=True)
-class _Lists:
-    """Points that are listed (L), those of one list after those of another."""
+class _Solids:
+    """What plain solids say (N)."""
 
     place: Ints
-    """Which of the lists asked for each is."""
-    points: Floats
-    """In units of the model (N, 3)."""
-    counts: Ints
-
-
-@dataclass(frozen=True, slots=True)
-class _Lines:
-    """Centre lines of curves (C)."""
-
-    place: Ints
-    """Which of the curves asked for each is."""
-    paths: PathTable
-    """In units of the model."""
+    """Which of the solids asked for each is."""
+    curve: Ints
+    radius: Floats
+    start: Floats
+    """Parameters between which the curve is swept; nan for its own ends."""
+    end: Floats
 
 
 def read_swept_texts(table: StepTable, solids: Ints, scale: float) -> SweptSolids:
     """Read swept solids by their STEP ids.
 
-    ``scale`` is in mm per unit of the model. Solids that are not written in the plainest way, or
-    whose curves are of another kind, are left out.
+    ``scale`` is in mm per unit of the model. Solids that are not written in the plainest way,
+    that are swept over a part of their curve, or whose curves are of another kind, are left out.
     """
-    place, curves, radius = _solids(table, solids)
-    lines = _indexed_curves(table, curves)
-    points, first, arcs = lines.paths.points * scale, lines.paths.first, lines.paths.arcs
-    found = place[lines.place]
-    diameter = 2.0 * radius[lines.place] * scale
-    return _on_earth(SweptSolids(found, PathTable(points, first, arcs), diameter))
+    asked = _solids(table, solids)
+    lines = indexed_curves(table, asked.curve).with_more(polylines(table, asked.curve))
+    whole = _whole(lines, asked.start[lines.place], asked.end[lines.place])
+    row = lines.place[whole]
+    paths = lines.paths if whole.all() else lines.paths.take(np.flatnonzero(whole))
+    paths = PathTable(paths.points * scale, paths.first, paths.arcs)
+    return _on_earth(SweptSolids(asked.place[row], paths, 2.0 * asked.radius[row] * scale))
 
 
-def _solids(table: StepTable, solids: Ints) -> tuple[Ints, Ints, Floats]:
-    """Of the plain solids: which they are, their curves and their radii."""
+def _solids(table: StepTable, solids: Ints) -> _Solids:
     solid = table.cursors(solids, "IFCSWEPTDISKSOLID")
     curve = solid.reference()
     solid.tokens(b",")
     radius = solid.number()
-    solid.tokens(b",", b"$", b",", b"$", b",", b"$", b")", b";")
-    return np.flatnonzero(solid.plain), curve[solid.plain], radius[solid.plain]
+    solid.tokens(b",", b"$", b",")
+    start = solid.number_or_nothing()
+    solid.tokens(b",")
+    end = solid.number_or_nothing()
+    solid.tokens(b")", b";")
+    kept = np.flatnonzero(solid.plain)
+    return _Solids(kept, curve[kept], radius[kept], start[kept], end[kept])
 
 
-def _indexed_curves(table: StepTable, curves: Ints) -> _Lines:
-    """Curves that take listed points in order, by their STEP ids."""
-    place, lists, segments, texts = _segments(table, curves)
-    listed = _listed_points(table, lists)
-    key = np.column_stack((segments[listed.place], listed.counts))
-    first, number = first_of_each(key)
-    orders = [_order(texts[segment], count) for segment, count in key[first].tolist()]
-    kept = np.array([order is not None for order in orders], dtype=bool)[number]
-    begin = offsets(listed.counts)[:-1][kept]
-    used, number = renumbered(number[kept], len(orders))
-    runs = [order for order in (orders[one] for one in used.tolist()) if order is not None]
-    return _Lines(place[listed.place[kept]], _in_order(listed.points, begin, runs, number))
+def _whole(lines: Lines, start: Floats, end: Floats) -> Bools:
+    """Whether parameters are the ends of curves, counted by pieces or by length.
 
-
-def _segments(table: StepTable, curves: Ints) -> tuple[Ints, Ints, Ints, list[bytes]]:
-    """Of the plain curves: which they are, their lists of points, and which of several texts
-    their segments are; and those texts."""
-    curve = table.cursors(curves, "IFCINDEXEDPOLYCURVE")
-    points = curve.reference()
-    curve.tokens(b",")
-    rests = table.rests(curve, curves).without_blanks()
-    first, number = rests.first_of_each()
-    found = [_CURVE_END.fullmatch(rests.of(row)) for row in first.tolist()]
-    plain = np.array([one is not None for one in found], dtype=bool)[number]
-    texts = [b"" if one is None else one[1] for one in found]
-    return np.flatnonzero(plain), points[plain], number[plain], texts
-
-
-def _listed_points(table: StepTable, lists: Ints) -> _Lists:
-    """The points of plain lists, by STEP ids."""
-    cursors = table.cursors(lists, "IFCCARTESIANPOINTLIST3D")
-    cursors.tokens(b"(", b"(")
-    rests = table.rests(cursors, lists).without_blanks()
-    plain, counts, begins, ends = _triples(rests)
-    numbers, stop, sound = read_numbers(rests.data, begins)
-    are_three = (sound & (stop == ends)).reshape(-1, 3).all(axis=1)
-    kept = np.ones(len(plain), dtype=bool)
-    kept[np.repeat(np.arange(len(plain)), counts)[~are_three]] = False
-    points = numbers.reshape(-1, 3)
-    return _Lists(plain[kept], points[np.repeat(kept, counts)], counts[kept])
-
-
-def _triples(rests: Rests) -> tuple[Ints, Ints, Ints, Ints]:
-    """Which lists of points are triples, ``1.,2.,3.),(4.,5.,6.)));``, after three brackets.
-
-    Returns these, how many triples each has, and where their numbers begin and end.
+    Where it is a matter of rounding whether a parameter is the length, it is left open.
     """
-    data, first = rests.data, rests.first[:-1]
-    signs = np.flatnonzero((data == OPEN) | (data == CLOSE) | (data == COMMA))
-    bounds = np.searchsorted(signs, rests.first)
-    held = np.searchsorted(signs, _before_ends(rests)) - bounds[:-1]
-    row, within = spread(np.diff(bounds))
-    place = (within + 1) % len(_TRIPLE)
-    wrong = (data[signs] != _TRIPLE[place]) & (within < held[row])
-    plain = held % len(_TRIPLE) == len(_TRIPLE) - 2
-    plain[row[wrong]] = False
-    ends = np.flatnonzero(plain[row] & (within < held[row]) & (place > 0) & (place < 4))
-    begins = np.where(within[ends] == 0, first[row[ends]], signs[ends - 1] + 1)
-    kept = np.flatnonzero(plain)
-    return kept, (held[kept] + 2) // len(_TRIPLE), begins, signs[ends]
+    begins: Bools = np.isnan(start) | (start == 0.0)
+    if np.isnan(end).all():
+        return begins
+    length = _lengths(lines.paths)
+    ends: Bools = np.isnan(end) | (np.abs(end - lines.pieces) <= PARAMETER_TOLERANCE * lines.pieces)
+    ends |= np.abs(end - length) <= PARAMETER_TOLERANCE / 2.0 * length
+    return np.asarray(begins & ends)
 
 
-def _before_ends(rests: Rests) -> Ints:
-    """Where the triples of lists end; where the lists begin for those that end otherwise."""
-    first, stop = rests.first[:-1], rests.first[1:]
-    found = first
-    for end in _LIST_ENDS:
-        ends = stop - first > len(end)
-        for place, sign in enumerate(end):
-            ends &= rests.data.take(stop - len(end) + place, mode="clip") == sign
-        found = np.where(ends, stop - len(end), found)
-    return found
-
-
-def _order(segments: bytes, count: int) -> Order | None:
-    """The order in which a curve takes its points; None where it is not plain."""
-    if segments == b"$":
-        return tuple(range(count)), ()
-    if not _SEGMENTS.fullmatch(segments):
-        return None
-    order: list[int] = []
-    arcs: list[int] = []
-    for kind, text in _SEGMENT.findall(segments):
-        indices = [int(index) - 1 for index in text.split(b",")]
-        if order and order[-1] != indices[0]:
-            return None
-        if kind == b"ARC":
-            if len(indices) != 3:
-                return None
-            arcs.append(max(len(order) - 1, 0))
-        order.extend(indices[1:] if order else indices)
-    if not 0 <= min(order) <= max(order) < count:
-        return None
-    return tuple(order), tuple(arcs)
-
-
-def _in_order(points: Floats, begin: Ints, orders: Sequence[Order], number: Ints) -> PathTable:
-    """Centre lines that take points in numbered orders; those of each begin at a place."""
-    line, index = _laid_out([indices for indices, _ in orders], number)
-    arc_line, arc = _laid_out([arcs for _, arcs in orders], number)
-    first = offsets(np.bincount(line, minlength=len(number)))
-    return PathTable(points[begin[line] + index], first, first[arc_line] + arc)
-
-
-def _laid_out(runs: Sequence[tuple[int, ...]], number: Ints) -> tuple[Ints, Ints]:
-    """The entries of numbered runs one after another, and which of ``number`` each is of."""
-    counts = np.array([len(run) for run in runs], dtype=np.intp)
-    entries = np.array([entry for run in runs for entry in run], dtype=np.intp)
-    line, within = spread(counts[number])
-    return line, entries[offsets(counts)[number[line]] + within]
+def _lengths(paths: PathTable) -> Floats:
+    """Lengths of centre lines along their lines and arcs, in their own unit."""
+    steps = sizes(np.diff(paths.points, axis=0, append=0.0))
+    steps[paths.first[1:] - 1] = 0.0
+    if len(paths.arcs):
+        _, across, _, half = arc_frames(paths.points, paths.arcs)
+        for step in (0, 1):
+            along = sizes(across) * half[:, step]
+            steps[paths.arcs + step] = np.maximum(steps[paths.arcs + step], along)
+    return np.asarray(np.add.reduceat(steps, paths.first[:-1]))
 
 
 def _on_earth(found: SweptSolids) -> SweptSolids:
@@ -205,7 +102,5 @@ def _on_earth(found: SweptSolids) -> SweptSolids:
     kept = (count >= 2) & (np.bincount(line[~near], minlength=len(count)) == 0)
     if kept.all():
         return found
-    index = np.cumsum(kept[line]) - 1
-    arc_kept = kept[line[found.paths.arcs]]
-    paths = PathTable(points[kept[line]], offsets(count[kept]), index[found.paths.arcs[arc_kept]])
-    return SweptSolids(found.place[kept], paths, found.diameter[kept])
+    taken = np.flatnonzero(kept)
+    return SweptSolids(found.place[taken], found.paths.take(taken), found.diameter[taken])

@@ -152,6 +152,8 @@ def _pattern(pairs: list[tuple[str, str]], whole_words: bool) -> re.Pattern[str]
 
 
 NO_FAMILIES: frozenset[str] = frozenset()
+WORD = re.compile(r"[^\W\d_]{3}")
+"""Three letters in a row, which all phrases and uses have and most marks have not."""
 _STEMS = _alternatives(STEMS)
 _STEM_FAMILY = dict(_STEMS)
 _STEM = _pattern(_STEMS, whole_words=False)
@@ -182,9 +184,10 @@ def speaks_of_lightweight(name: str) -> bool:
 @lru_cache(maxsize=8192)
 def families_named(text: str) -> frozenset[str]:
     """Return the materials and uses that the name of a member or a type speaks of."""
+    if WORD.search(text.casefold()) is None:
+        return NO_FAMILIES
     families, rest = _split(text)
-    uses = _USE.findall(rest)
-    return families | {_USE_FAMILY[word] for word in uses} if uses else families
+    return families | {_USE_FAMILY[word] for word in _USE.findall(rest)}
 
 
 @lru_cache(maxsize=1024)
@@ -199,7 +202,5 @@ def families_of_material(text: str) -> frozenset[str]:
 def _split(text: str) -> tuple[frozenset[str], str]:
     """The families of the phrases in a text, and what these leave of it."""
     folded = text.casefold()
-    if _STEM.search(folded) is None:
-        return NO_FAMILIES, folded.replace("_", " ")
     families = frozenset(_STEM_FAMILY[phrase] for phrase in _STEM.findall(folded)) - {NOTHING}
     return families, _STEM.sub(" \x00 ", folded).replace("_", " ")

@@ -3,8 +3,10 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Callable, Iterable, Iterator, Mapping, Sequence
+from collections import Counter
+from collections.abc import Callable, Iterable, Iterator, Mapping, Sequence, Set
 from itertools import chain
+from operator import attrgetter
 from typing import Any
 
 import numpy as np
@@ -12,11 +14,12 @@ import numpy as np
 import ifccheck
 from ifccheck.ifc.archive import pack
 from ifccheck.ifc.entity import GLOBAL_ID, text_at
-from ifccheck.ifc.identity import RESULT_SET_NAMES, relation_guid, set_guid
-from ifccheck.ifc.lexer import LARGEST_ID, Offsets
+from ifccheck.ifc.identity import RESULT_SET_NAMES, set_and_relation_guids
+from ifccheck.ifc.lexer import LARGEST_ID
 from ifccheck.ifc.marks import with_block
 from ifccheck.ifc.opening import OpenedModel
 from ifccheck.ifc.result_units import UnitEntity, result_units
+from ifccheck.ifc.step_bytes import Offsets
 from ifccheck.ifc.step_text import step_logical, step_real, step_string
 from ifccheck.result_sets import Measure, ResultProperty, ResultSet
 
@@ -32,20 +35,31 @@ _MEASURE_TYPES: Mapping[Measure, str] = {
 
 def rated_bytes(opened: OpenedModel, sets: Sequence[ResultSet]) -> bytes:
     """Return the model with result sets added; without any, its own bytes."""
-    distinct = dict.fromkeys(chain.from_iterable(result.properties for result in sets))
+    distinct = dict.fromkeys(chain.from_iterable([result.properties for result in sets]))
     _require_sound(opened, sets, distinct)
-    writable = {item for item in distinct if _has_value(item)}
-    if not writable:
+    worthless = {item for item in distinct if not _has_value(item)}
+    measures = {item.measure for item in distinct if item not in worthless}
+    if not measures:
         return opened.source
     lines = _Lines(fresh_ids(opened.scan.ids))
-    units = result_units(opened.file, {item.measure for item in writable}, lines.add)
+    units = result_units(opened.file, measures, lines.add)
     owner = _owner_history(opened, lines.add)
-    values = _Values(lines, units)
-    for result in sets:
-        kept = [item for item in result.properties if item in writable]
+    references = _References(lines, units)
+    guids = set_and_relation_guids([result.identity for result in sets])
+    for result, of_set in zip(sets, guids, strict=True):
+        kept = _without(worthless, result.properties)
         if kept:
-            _add_set(lines, result, values.references(kept), owner)
+            listed = ",".join(map(references.__getitem__, kept))
+            _add_set(lines, result, of_set, listed, owner)
     return with_block(opened.source, opened.scan, opened.sha256, lines.written)
+
+
+def _without(
+    worthless: Set[ResultProperty], items: tuple[ResultProperty, ...]
+) -> tuple[ResultProperty, ...]:
+    if not worthless:
+        return items
+    return tuple(item for item in items if item not in worthless)
 
 
 def packed(opened: OpenedModel, data: bytes) -> bytes:
@@ -55,9 +69,9 @@ def packed(opened: OpenedModel, data: bytes) -> bytes:
 
 def fresh_ids(used: Offsets) -> Iterator[int]:
     """Yield instance numbers that are not used: those after the greatest, then the gaps."""
-    ordered = np.sort(used)
-    greatest = int(ordered[-1]) if len(ordered) else 0
+    greatest = int(used.max()) if len(used) else 0
     yield from range(greatest + 1, LARGEST_ID + 1)
+    ordered = np.sort(used)
     before = np.concatenate(([0], ordered[:-1]))
     for gap in np.flatnonzero(ordered - before > 1):
         yield from range(int(before[gap]) + 1, int(ordered[gap]))
@@ -77,22 +91,18 @@ class _Lines:
         return number
 
 
-class _Values:
-    """Properties to be added; beams that have the same one share it."""
+class _References(dict[ResultProperty, str]):
+    """How sets refer to properties; those that are new are added, and shared from then on."""
 
     def __init__(self, lines: _Lines, units: Mapping[Measure, UnitEntity]) -> None:
+        super().__init__()
         self._lines = lines
         self._units = units
-        self._references: dict[ResultProperty, str] = {}
         self._names: dict[str, str] = {}
 
-    def references(self, items: Sequence[ResultProperty]) -> str:
-        """The properties as a set lists them, new ones added."""
-        known = self._references
-        for item in items:
-            if item not in known:
-                known[item] = f"#{self._lines.add(self._instance(item))}"
-        return ",".join([known[item] for item in items])
+    def __missing__(self, item: ResultProperty) -> str:
+        self[item] = reference = f"#{self._lines.add(self._instance(item))}"
+        return reference
 
     def _instance(self, item: ResultProperty) -> str:
         if item.name not in self._names:
@@ -112,13 +122,13 @@ def _has_value(item: ResultProperty) -> bool:
     return math.isfinite(item.value)
 
 
-def _add_set(lines: _Lines, result: ResultSet, references: str, owner: str) -> None:
-    identity = (result.guid, result.ordinal, result.name)
-    name = step_string(result.name)
-    number = lines.add(f"IFCPROPERTYSET('{set_guid(*identity)}',{owner},{name},$,({references}))")
+def _add_set(
+    lines: _Lines, result: ResultSet, guids: tuple[str, str], references: str, owner: str
+) -> None:
+    of_set, of_relation = guids
+    number = lines.add(f"IFCPROPERTYSET('{of_set}',{owner},'{result.name}',$,({references}))")
     lines.add(
-        f"IFCRELDEFINESBYPROPERTIES('{relation_guid(*identity)}',{owner},$,$,"
-        f"(#{result.step_id}),#{number})"
+        f"IFCRELDEFINESBYPROPERTIES('{of_relation}',{owner},$,$,(#{result.step_id}),#{number})"
     )
 
 
@@ -139,21 +149,25 @@ def _require_sound(
     opened: OpenedModel, sets: Sequence[ResultSet], distinct: Iterable[ResultProperty]
 ) -> None:
     """Refuse sets that would make the model unsound or could not be taken away again."""
-    seen: set[tuple[str, int, str]] = set()
+    for (guid, _, name), count in Counter([result.identity for result in sets]).items():
+        if count > 1:
+            raise ValueError(f"{name} of {guid} is given twice")
+    sound: set[tuple[str, ...]] = set()
     for result in sets:
-        identity = (result.guid, result.ordinal, result.name)
-        if identity in seen:
-            raise ValueError(f"{result.name} of {result.guid} is given twice")
-        seen.add(identity)
         if result.name not in RESULT_SET_NAMES:
             raise ValueError(f"{result.name} is not a result set")
-        if len({item.name for item in result.properties}) != len(result.properties):
+        names = tuple(map(_name_of, result.properties))
+        if names not in sound and len(set(names)) < len(names):
             raise ValueError(f"{result.name} of {result.guid} gives a property twice")
+        sound.add(names)
     for item in distinct:
         _require_short(item)
     for step_id, guid in {result.step_id: result.guid for result in sets}.items():
         if _guid_at(opened.file, step_id) != guid:
             raise ValueError(f"#{step_id} is not the beam {guid}")
+
+
+_name_of = attrgetter("name")
 
 
 def _guid_at(file: Any, step_id: int) -> str | None:

@@ -114,7 +114,8 @@ class Demand:
     """The shear to check with: that at the critical section where the standard lets
     stations nearer to the support use it, else ``shear`` itself [N]"""
     peak_sagging: Floats
-    """Upper bound of the sagging moment anywhere on the beam in the combination [N*mm], >= 0"""
+    """Upper bound of the sagging moment anywhere on the beam in the combination [N*mm], >= 0; a
+    looser bound never makes a utilisation less"""
     peak_hogging: Floats
     """The same for hogging, as a positive number [N*mm]"""
     can_sag: Bools

@@ -5,11 +5,10 @@ from __future__ import annotations
 import csv
 import io
 import math
-from functools import lru_cache
 
 from ifccheck.publish.report import Report
 from ifccheck.publish.words import plain
-from ifccheck.tables import Cell, ratings_rows
+from ifccheck.tables import Cell, ratings_columns
 
 _STARTS_A_FORMULA = tuple("=+-@＝＋－＠")
 
@@ -21,21 +20,27 @@ def ratings_csv(report: Report) -> str:
     ``..._state`` beside it says why.
     """
     cases = [case.case for case in report.cases]
-    rows = ratings_rows(report.model.beams, report.ratings, report.spans, cases)
+    columns = ratings_columns(report.model.beams, report.ratings, report.spans, cases)
     text = io.StringIO()
     writer = csv.writer(text, lineterminator="\n")
-    writer.writerow([neutral(name) for name in (rows[0] if rows else ())])
-    writer.writerows([_cell(value) for value in row.values()] for row in rows)
+    writer.writerow(map(neutral, columns))
+    writer.writerows(zip(*map(_cells, columns.values()), strict=True))
     return text.getvalue()
 
 
-def _cell(value: Cell) -> Cell:
-    if isinstance(value, str):
-        return neutral(value)
-    return None if isinstance(value, float) and not math.isfinite(value) else value
+def _cells(column: list[Cell]) -> list[Cell]:
+    """A column as it is written; equal texts are looked at once."""
+    texts = {value: neutral(value) for value in set(column) if isinstance(value, str)}
+    return [
+        texts[value]
+        if isinstance(value, str)
+        else None
+        if isinstance(value, float) and not math.isfinite(value)
+        else value
+        for value in column
+    ]
 
 
-@lru_cache(maxsize=8192)
 def neutral(text: str) -> str:
     """Return a text that no spreadsheet takes for a formula.
 

@@ -30,12 +30,13 @@ from __future__ import annotations
 
 import json
 import math
+from collections.abc import Iterator
 from typing import Any
 
-from ifccheck.beam import Beam, Combination, Opening, OutOfScope, Remark, Span, Support
+from ifccheck.beam import Combination, OutOfScope, Remark
+from ifccheck.publish.json_beams import beam_texts
 from ifccheck.publish.report import CaseSummary, Report
-from ifccheck.rating import BasisItem, LimitStateRating, Rating, SafeLoad
-from ifccheck.tables import factor_state, utilisation_state
+from ifccheck.tables import factor_state
 
 SCHEMA_VERSION = "1.0"
 UNITS = {"length": "mm", "force": "N", "moment": "N*mm", "line_force": "N/mm",
@@ -48,15 +49,21 @@ _text = json.JSONEncoder(allow_nan=False).encode
 
 def ratings_json(report: Report) -> str:
     """Return the whole answer as JSON; the same report gives the same text."""
-    members = (f"{_text(name)}: {_lines(value)}" for name, value in _report(report).items())
-    return "{\n" + ",\n".join(members) + "\n}\n"
+    pieces: list[str] = []
+    for name, value in _report(report).items():
+        pieces += (",\n" if pieces else "{\n", _text(name), ": ", *_lines(value))
+    return "".join([*pieces, "\n}\n"])
 
 
-def _lines(value: Any) -> str:
-    """A member of the whole: a list with one row a line, so that two runs can be compared."""
-    if isinstance(value, list) and value:
-        return "[\n" + ",\n".join(map(_text, value)) + "\n]"
-    return _text(value)
+def _lines(value: Any) -> tuple[str, ...]:
+    """A member of the whole: a list with one row a line, so that two runs can be compared.
+
+    An iterator gives the rows as texts.
+    """
+    if not isinstance(value, list | Iterator):
+        return (_text(value),)
+    rows = ",\n".join(value if isinstance(value, Iterator) else map(_text, value))
+    return ("[\n", rows, "\n]") if rows else ("[]",)
 
 
 def _report(report: Report) -> Data:
@@ -87,7 +94,7 @@ def _report(report: Report) -> Data:
         },
         "rated_cases": [_case(case) for case in report.cases],
         "combinations": [_combination(combination) for combination in report.combinations],
-        "beams": [_beam(beam, report) for beam in report.model.beams],
+        "beams": beam_texts(report),
         "out_of_scope": [_out_of_scope(member) for member in report.model.out_of_scope],
         "assumptions": [{"text": a.text, "beams": list(a.beams)} for a in report.assumptions],
         "remarks": [_remark(remark) for remark in report.remarks],
@@ -96,13 +103,6 @@ def _report(report: Report) -> Data:
 
 def _finite(value: float) -> float | None:
     return value if math.isfinite(value) else None
-
-
-def _used(utilisation: float) -> Data:
-    return {
-        "utilisation": _finite(utilisation),
-        "utilisation_state": utilisation_state(utilisation),
-    }
 
 
 def _factor(factor: float) -> Data:
@@ -124,109 +124,6 @@ def _case(case: CaseSummary) -> Data:
 def _combination(combination: Combination) -> Data:
     factors = {case: list(pair) for case, pair in combination.factors.items()}
     return {"name": combination.name, "kind": combination.kind, "factors": factors}
-
-
-def _beam(beam: Beam, report: Report) -> Data:
-    rating = report.ratings[beam.key]
-    span = report.spans.get(beam.key)
-    return {
-        "key": beam.key,
-        "global_id": beam.guid,
-        "ordinal": beam.ordinal,
-        "mark": beam.mark,
-        "name": beam.name,
-        "tag": beam.tag,
-        "type": beam.type_name,
-        "storey": beam.storey,
-        "material": beam.material,
-        "length": beam.length if beam.axis else None,
-        "span": _span(span) if span else None,
-        **({"openings": [_opening(each) for each in beam.openings]} if beam.openings else {}),
-        **_rating(rating),
-    }
-
-
-def _span(span: Span) -> Data:
-    return {
-        "start": span.start,
-        "end": span.end,
-        "start_support": _support(span.start_support),
-        "end_support": _support(span.end_support),
-    }
-
-
-def _support(support: Support) -> Data:
-    return {"kind": support.kind, "bearing": support.bearing, "source": support.source}
-
-
-def _rating(rating: Rating) -> Data:
-    return {
-        "verdict": str(rating.verdict),
-        **_used(rating.utilisation),
-        "governing": rating.governing.name if rating.governing else None,
-        "limit_states": [_limit_state(state) for state in rating.limit_states],
-        "rated_cases": [_safe_load(safe) for safe in rating.safe_loads],
-        "reasons": [reason.text for reason in rating.reasons],
-        "remarks": [_remark(remark) for remark in rating.remarks],
-        "basis": [_basis(item) for item in rating.basis],
-        "checked": list(rating.checked),
-        "not_checked": list(rating.not_checked),
-    }
-
-
-def _opening(opening: Opening) -> Data:
-    return {
-        "start": opening.start,
-        "end": opening.end,
-        "right": opening.right,
-        "left": opening.left,
-        "bottom": opening.bottom,
-        "top": opening.top,
-        "shape": opening.shape,
-        "origin": opening.origin,
-    }
-
-
-def _limit_state(state: LimitStateRating) -> Data:
-    return {
-        "name": state.name,
-        "title": state.title,
-        **_used(state.utilisation),
-        "position": _finite(state.position),
-        "combination": state.combination,
-        "demand": _finite(state.demand),
-        "resistance": _finite(state.resistance),
-        "unit": state.demand_unit,
-        "clause": state.clause,
-        "counted": state.counted,
-        "why_not": state.why_not,
-    }
-
-
-def _safe_load(safe: SafeLoad) -> Data:
-    return {
-        "case": safe.case,
-        **_factor(safe.factor),
-        "assigned": safe.assigned,
-        "safe_load": safe.text,
-        "single_load": _finite(safe.single_value),
-        "single_unit": {"point": "N", "line": "N/mm"}.get(safe.single_kind),
-        "limited_by": safe.governing or None,
-        "position": _finite(safe.position),
-        "combination": safe.combination,
-    }
-
-
-def _basis(item: BasisItem) -> Data:
-    value = item.value
-    return {
-        "name": item.name,
-        "label": item.label,
-        "value": value if isinstance(value, str) else _finite(value),
-        "measure": item.measure,
-        "source": item.source,
-        "assumed": item.assumed,
-    }
 
 
 def _out_of_scope(member: OutOfScope) -> Data:

@@ -4,12 +4,16 @@ from __future__ import annotations
 
 import hashlib
 import math
+from collections import Counter
 from collections.abc import Iterable
+from functools import cache, lru_cache
+from itertools import chain
+from operator import attrgetter
 from typing import cast, get_args
 
 from ifccheck.beam import Verdict
 from ifccheck.publish.report import Report
-from ifccheck.rating import BasisItem, Rating, SafeLoad
+from ifccheck.rating import BasisItem, LimitStateRating, Rating, SafeLoad
 from ifccheck.result_sets import Measure, ResultProperty, ResultSet
 
 LONGEST_LABEL = 255
@@ -18,7 +22,7 @@ given whole in a text property."""
 
 ADEQUATE = {Verdict.ADEQUATE: True, Verdict.FALLS_SHORT: False, Verdict.NOT_RATED: None}
 
-Value = str | float | bool | None
+Properties = tuple[ResultProperty, ...]
 _MEASURES = frozenset(get_args(Measure))
 
 
@@ -27,11 +31,15 @@ def result_sets(report: Report) -> tuple[ResultSet, ...]:
 
     A set without any property is left out.
     """
-    identifier = basis_identifier(report)
+    of_run = (
+        *_text("Standard", "label", report.standard_name),
+        *_text("Actions", "label", report.actions),
+        *_text("Basis", "identifier", basis_identifier(report)),
+    )
     return tuple(
-        ResultSet(beam.step_id, beam.guid, beam.ordinal, name, tuple(properties))
+        ResultSet(beam.step_id, beam.guid, beam.ordinal, name, properties)
         for beam in report.model.beams
-        for name, properties in _sets(report.ratings[beam.key], report, identifier)
+        for name, properties in _sets(report.ratings[beam.key], of_run)
         if properties
     )
 
@@ -48,106 +56,131 @@ def basis_identifier(report: Report) -> str:
     return hashlib.sha256("\n".join(parts).encode()).hexdigest()
 
 
-def _sets(
-    rating: Rating, report: Report, identifier: str
-) -> tuple[tuple[str, list[ResultProperty]], ...]:
+def _sets(rating: Rating, of_run: Properties) -> tuple[tuple[str, Properties], ...]:
     return (
-        ("BeamRating_Result", _result(rating, report, identifier)),
+        ("BeamRating_Result", _result(rating, of_run)),
         ("BeamRating_LimitStates", _limit_states(rating)),
         ("BeamRating_SafeLoads", _safe_loads(rating.safe_loads)),
         ("BeamRating_Basis", _basis(rating.basis)),
     )
 
 
-def _given(rows: Iterable[tuple[str, Measure, Value]]) -> list[ResultProperty]:
-    """The properties whose value is finite and no empty text; long labels in two."""
-    given: list[ResultProperty] = []
-    for name, measure, value in rows:
-        if isinstance(value, str):
-            if len(value) > LONGEST_LABEL and measure != "text":
-                given += _cut(name, measure, value)
-            elif value:
-                given.append(ResultProperty(name, measure, value))
-        elif isinstance(value, bool) or value is None:
-            given.append(ResultProperty(name, measure, value))
-        elif math.isfinite(value):
-            given.append(ResultProperty(name, measure, float(value)))
-    return given
+def _number(name: str, measure: Measure, value: float) -> Properties:
+    """The property of a value that is finite; else none."""
+    return (ResultProperty(name, measure, float(value)),) if math.isfinite(value) else ()
 
 
-def _cut(name: str, measure: Measure, text: str) -> tuple[ResultProperty, ResultProperty]:
+def _text(name: str, measure: Measure, text: str) -> Properties:
+    """The property of a text that is not empty, a long label in two; else none."""
+    if len(text) > LONGEST_LABEL and measure != "text":
+        return (
+            ResultProperty(name, measure, f"{text[: LONGEST_LABEL - 1]}…"),
+            ResultProperty(f"{name}Text", "text", text),
+        )
+    return (ResultProperty(name, measure, text),) if text else ()
+
+
+def _result(rating: Rating, of_run: Properties) -> Properties:
+    least = _least(rating.safe_loads)
     return (
-        ResultProperty(name, measure, f"{text[: LONGEST_LABEL - 1]}…"),
-        ResultProperty(f"{name}Text", "text", text),
+        *_verdict(rating.verdict),
+        *_number("Utilisation", "real", rating.utilisation),
+        *(_NO_RESISTANCE if math.isinf(rating.utilisation) else ()),
+        *(_governing(rating.governing) if rating.governing else ()),
+        *(_number("LeastRatingFactor", "real", least.factor) if least else ()),
+        *(_text("LeastRatedCase", "label", least.case) if least else ()),
+        *_covered(rating.checked, rating.not_checked),
+        *_text("Reason", "text", "; ".join([reason.text for reason in rating.reasons])),
+        *of_run,
     )
 
 
-def _result(rating: Rating, report: Report, identifier: str) -> list[ResultProperty]:
-    rows: list[tuple[str, Measure, Value]] = [
-        ("Verdict", "label", str(rating.verdict)),
-        ("Adequate", "logical", ADEQUATE[rating.verdict]),
-        ("Utilisation", "real", rating.utilisation),
-    ]
-    if math.isinf(rating.utilisation):
-        rows += [("UtilisationState", "label", "no resistance where some is demanded")]
-    if worst := rating.governing:
-        rows += [
-            ("GoverningLimitState", "label", worst.title),
-            ("GoverningClause", "label", worst.clause),
-            ("GoverningCombination", "label", worst.combination),
-            ("GoverningPosition", "length", worst.position),
-        ]
-    if least := _least(rating.safe_loads):
-        rows += [
-            ("LeastRatingFactor", "real", least.factor),
-            ("LeastRatedCase", "label", least.case),
-        ]
-    rows += [
-        ("LimitStatesChecked", "text", ", ".join(rating.checked)),
-        ("LimitStatesNotChecked", "text", ", ".join(rating.not_checked)),
-        ("Reason", "text", "; ".join(reason.text for reason in rating.reasons)),
-        ("Standard", "label", report.standard_name),
-        ("Actions", "label", report.actions),
-        ("Basis", "identifier", identifier),
-    ]
-    return _given(rows)
+_NO_RESISTANCE = _text("UtilisationState", "label", "no resistance where some is demanded")
+
+
+@cache
+def _verdict(word: Verdict) -> Properties:
+    adequate = ResultProperty("Adequate", "logical", ADEQUATE[word])
+    return *_text("Verdict", "label", str(word)), adequate
+
+
+def _governing(worst: LimitStateRating) -> Properties:
+    return (
+        *_text("GoverningLimitState", "label", worst.title),
+        *_text("GoverningClause", "label", worst.clause),
+        *_text("GoverningCombination", "label", worst.combination),
+        *_number("GoverningPosition", "length", worst.position),
+    )
+
+
+@lru_cache(maxsize=64)
+def _covered(checked: tuple[str, ...], not_checked: tuple[str, ...]) -> Properties:
+    return (
+        *_text("LimitStatesChecked", "text", ", ".join(checked)),
+        *_text("LimitStatesNotChecked", "text", ", ".join(not_checked)),
+    )
 
 
 def _least(safe_loads: tuple[SafeLoad, ...]) -> SafeLoad | None:
     """The case with the least factor; none where a case is not rated or none is limited."""
     if not safe_loads or any(math.isnan(safe.factor) for safe in safe_loads):
         return None
-    least = min(safe_loads, key=lambda safe: safe.factor)
+    least = min(safe_loads, key=_factor)
     return least if math.isfinite(least.factor) else None
 
 
-def _limit_states(rating: Rating) -> list[ResultProperty]:
-    return _given([(state.name, "real", state.utilisation) for state in rating.limit_states])
+_factor = attrgetter("factor")
 
 
-def _safe_loads(safe_loads: tuple[SafeLoad, ...]) -> list[ResultProperty]:
-    rows: list[tuple[str, Measure, Value]] = []
+def _limit_states(rating: Rating) -> Properties:
+    return tuple(
+        ResultProperty(state.name, "real", state.utilisation)
+        for state in rating.limit_states
+        if math.isfinite(state.utilisation)
+    )
+
+
+def _safe_loads(safe_loads: tuple[SafeLoad, ...]) -> Properties:
+    found: list[ResultProperty] = []
     for safe in safe_loads:
-        rows.append((f"{safe.case} factor", "real", safe.factor))
+        found += _number(f"{safe.case} factor", "real", safe.factor)
         name = f"{safe.case} safe load"
         if math.isfinite(safe.single_value) and safe.single_kind:
             measure: Measure = "force" if safe.single_kind == "point" else "line_force"
-            rows.append((name, measure, safe.single_value))
+            found += _number(name, measure, safe.single_value)
         else:
-            rows.append((name, "text", safe.text))
-    return _given(rows)
+            found += _text(name, "text", safe.text)
+    return tuple(found)
 
 
-def _basis(items: tuple[BasisItem, ...]) -> list[ResultProperty]:
-    used: dict[str, int] = {}
-    rows: list[tuple[str, Measure, Value]] = []
+def _basis(items: tuple[BasisItem, ...]) -> Properties:
+    if len({item.name for item in items}) < len(items):
+        items = _told_apart(items)
+    return tuple(chain.from_iterable(map(_of_item, items)))
+
+
+def _told_apart(items: Iterable[BasisItem]) -> tuple[BasisItem, ...]:
+    """Items of which those of a name that was used before are counted from 2."""
+    used: Counter[str] = Counter()
+    found = []
     for item in items:
-        used[item.name] = count = used.get(item.name, 0) + 1
-        name = item.name if count == 1 else f"{item.name}{count}"
-        source = f"assumed: {item.source}" if item.assumed else item.source
-        rows.append((name, _measure(item), item.value))
-        rows.append((f"{name}Source", "label", source))
-    return _given(rows)
+        used[item.name] += 1
+        count = used[item.name]
+        found.append(item if count == 1 else item._replace(name=f"{item.name}{count}"))
+    return tuple(found)
+
+
+@lru_cache(maxsize=16384)
+def _of_item(item: BasisItem) -> Properties:
+    """Value and source of an item; beams that have the same one share them."""
+    source = f"assumed: {item.source}" if item.assumed else item.source
+    value, measure = item.value, _measure(item)
+    own = (
+        _text(item.name, measure, value)
+        if isinstance(value, str)
+        else _number(item.name, measure, value)
+    )
+    return *own, *_text(f"{item.name}Source", "label", source)
 
 
 def _measure(item: BasisItem) -> Measure:

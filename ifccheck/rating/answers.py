@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import math
 from collections.abc import Iterator, Sequence
-from dataclasses import dataclass
+from typing import NamedTuple
 
 import numpy as np
 
@@ -20,8 +20,7 @@ from ifccheck.standards import LimitState, Standard
 from ifccheck.units import show
 
 
-@dataclass(frozen=True, slots=True)
-class _Findings:
+class _Findings(NamedTuple):
     """What was found of one beam before its verdict."""
 
     states: tuple[LimitStateRating, ...]

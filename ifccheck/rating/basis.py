@@ -161,19 +161,36 @@ def _bars_text(bars: Sequence[Bars]) -> str:
 
 def _row_text(row: Sequence[Bars]) -> str:
     first, last = row[0], row[-1]
-    heights = dict.fromkeys(
-        show(z, "dimension") for z in (min(b.z for b in row), max(b.z for b in row))
+    low, high = min(bar.z for bar in row), max(bar.z for bar in row)
+    return _layer_text(
+        first.count, first.designation, first.diameter, low, high, first.start, last.end
     )
-    return (
-        f"{first.count}-{first.designation or show(first.diameter, 'dimension')} at z = "
-        f"{' to '.join(heights)}, x = {show(first.start, 'length')} to {show(last.end, 'length')}"
-    )
+
+
+@lru_cache(maxsize=8192)
+def _layer_text(
+    count: int,
+    designation: str,
+    diameter: float,
+    low: float,
+    high: float,
+    start: float,
+    end: float,
+) -> str:
+    name = designation or show(diameter, "dimension")
+    heights = " to ".join(dict.fromkeys(show(z, "dimension") for z in (low, high)))
+    stretch = f"x = {show(start, 'length')} to {show(end, 'length')}"
+    return f"{count}-{name} at z = {heights}, {stretch}"
 
 
 def _stirrups_text(subject: Subject) -> str:
     if not subject.stirrups_known:
         return "not stated"
-    return "; ".join(_zone_text(zone) for zone in _in_a_row(subject.stirrups)) or "none"
+    texts = [
+        _zone_text(z.legs, z.designation, z.diameter, z.spacing, z.start, z.end)
+        for z in _in_a_row(subject.stirrups)
+    ]
+    return "; ".join(texts) or "none"
 
 
 def _in_a_row(zones: Sequence[Stirrups]) -> list[Stirrups]:
@@ -192,11 +209,14 @@ def _alike(zone: Stirrups) -> tuple[object, ...]:
     return zone.legs, zone.designation, zone.diameter, zone.spacing
 
 
-def _zone_text(zone: Stirrups) -> str:
-    legs = "legs not stated" if zone.legs is None else f"{zone.legs} legs"
-    name = zone.designation or show(zone.diameter, "dimension")
-    stretch = f"x = {show(zone.start, 'length')} to {show(zone.end, 'length')}"
-    return f"{legs} {name} @ {show(zone.spacing, 'dimension')}, {stretch}"
+@lru_cache(maxsize=8192)
+def _zone_text(
+    legs: int | None, designation: str, diameter: float, spacing: float, start: float, end: float
+) -> str:
+    known = "legs not stated" if legs is None else f"{legs} legs"
+    name = designation or show(diameter, "dimension")
+    stretch = f"x = {show(start, 'length')} to {show(end, 'length')}"
+    return f"{known} {name} @ {show(spacing, 'dimension')}, {stretch}"
 
 
 def _sections(batch: Batch, governing: Sequence[LimitStateRating | None]) -> list[list[BasisItem]]:

@@ -11,13 +11,15 @@ from typing import TypeVar
 
 import numpy as np
 
-from ifccheck.analysis.effects import Effects, combine, demands, turning_places
+from ifccheck.analysis.effects import combine, demands, turning_places
 from ifccheck.analysis.statics import case_effects
 from ifccheck.analysis.stations import StationTable, rows_before
 from ifccheck.mechanics.arrays import Bools, Floats, Ints
-from ifccheck.rating.assembly import Frame, make_station_arrays
+from ifccheck.rating.assembly import make_station_arrays
 from ifccheck.rating.elements import distinct_elements
 from ifccheck.rating.factors import Factors, rating_factors
+from ifccheck.rating.loaded import Loaded
+from ifccheck.rating.utilisation import evaluate
 from ifccheck.standards import Options, Standard
 
 Values = TypeVar("Values", Floats, Ints)
@@ -32,13 +34,9 @@ MOST_ROUNDS = 6
 class Growth:
     """A rated case that may be multiplied."""
 
-    frame: Frame
-    effects: Effects
-    """Of all cases at the stations of the batch"""
+    under: Loaded
     case: int
     """Row of the rated case"""
-    factors: Floats
-    """Factors of the combinations (C, K, 2)"""
 
 
 def with_turns(found: Factors, growth: Growth, standard: Standard, options: Options) -> Factors:
@@ -50,7 +48,7 @@ def with_turns(found: Factors, growth: Growth, standard: Standard, options: Opti
     moving = np.isfinite(found.factor) & (found.factor > 0.0)
     for _ in range(MOST_ROUNDS):
         beam, x = _turns(found.factor, moving, growth)
-        rated = ~growth.frame.disturbed.hold(beam, x)
+        rated = ~growth.under.frame.disturbed.hold(beam, x)
         beam, x = beam[rated], x[rated]
         if not beam.size:
             return found
@@ -62,13 +60,13 @@ def with_turns(found: Factors, growth: Growth, standard: Standard, options: Opti
 
 def _turns(factor: Floats, moving: Bools, growth: Growth) -> tuple[Ints, Floats]:
     """Where the moments of the moving beams turn with the case multiplied."""
-    cases = growth.effects.cases
+    cases = growth.under.effects.cases
     rows = np.flatnonzero(moving[cases.beam])
     beam, moment, shear = cases.beam[rows], cases.moment[:, rows], cases.shear[:, rows]
     moment[growth.case] *= factor[beam]
     shear[growth.case] *= factor[beam]
     grown = replace(cases, beam=beam, x=cases.x[rows], moment=moment, shear=shear, deflection=None)
-    return turning_places(replace(growth.effects, cases=grown), alone=False)
+    return turning_places(grown, growth.under.factors, alone=False)
 
 
 def _factors_at(
@@ -80,23 +78,24 @@ def _factors_at(
     options: Options,
 ) -> Factors:
     """The factors, lowered to what holds at some more places."""
-    frame, side = growth.frame, np.zeros_like(beam)
-    stations = StationTable(beam, x, side)
+    under, side = growth.under, np.zeros_like(beam)
+    frame, stations = under.frame, StationTable(beam, x, side)
     cases = case_effects(
-        frame.spans, frame.loads, stations, len(growth.effects.cases.moment), deflections=False
+        frame.spans, frame.loads, stations, under.factors.shape[1], deflections=False
     )
-    acting = demands(combine(cases, growth.factors), np.arange(x.size), (growth.case,))
+    effects = combine(cases, under.factors)
+    acting = demands(effects, np.arange(x.size), (growth.case,))
     arrays = make_station_arrays(frame, beam, x, side)
     beams, row = np.unique(beam, return_inverse=True)
-    elements = distinct_elements(acting, row, np.zeros(x.size, dtype=np.bool_))
+    elements = distinct_elements(effects, acting, row)
     prepared = standard.prepare(*arrays, options)
-    evaluations = [
-        (quick, quick.basis(prepared).take(elements.station))
+    there = [
+        evaluate(quick, quick.basis(prepared), elements)
         for quick in standard.quick
-        if quick.linear
+        if quick.demanded is not None
     ]
     lower = rating_factors(
-        standard.limit_states, evaluations, elements, elements.shares[0], x, found.factor[beams]
+        standard.limit_states, there, elements, elements.shares[0], x, found.factor[beams]
     )
     return _lowered(found, lower, beams, growth, x.size)
 
@@ -104,7 +103,7 @@ def _factors_at(
 def _lowered(found: Factors, lower: Factors, beams: Ints, growth: Growth, places: int) -> Factors:
     """The lesser factors of both; an element is named after the station before its place."""
     better = lower.factor < found.factor[beams]
-    changed, cases = beams[better], growth.effects.cases
+    changed, cases = beams[better], growth.under.effects.cases
     station = rows_before(cases.beam, cases.x, changed, lower.x[better])
     element = lower.element[better] // places * cases.x.size + station
     return Factors(

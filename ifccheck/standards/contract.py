@@ -86,9 +86,6 @@ class LimitState:
     """The word used in "adequate in flexure and shear"."""
     demand_unit: str
     """"N*mm", "N" ..."""
-    linear: bool
-    """Demand is linear in the loads, or nothing where that is less, and resistance does not
-    depend on them."""
     check: Callable[[Any, Demand], Check]
     lines: tuple[CalculationLine, ...]
 
@@ -106,11 +103,18 @@ class Quick:
     and basis may hold any stations in any order, so that arrays are (N)"""
     loaded: bool = True
     """False where the loads change nothing"""
+    demanded: Callable[[Demand], Sequence[Floats]] | None = None
+    """Where no resistance depends on the loads: the demand of each of them, linear in the loads,
+    before what is less than nothing counts as nothing"""
+    turns: Callable[[Any, Demand, Demand], Sequence[Floats]] | None = None
+    """Multiples of a case at which another rule begins to hold and utilisation may drop, given
+    that basis, what acts and the part that the case has in it; nan or inf where there is none"""
 
     @property
-    def linear(self) -> bool:
-        """All of them are linear."""
-        return all(state.linear for state in self.states)
+    def steady(self) -> bool:
+        """No resistance depends on the loads; none of these limit states may depend on the
+        options"""
+        return not self.loaded or self.demanded is not None
 
 
 @dataclass(frozen=True, slots=True)
@@ -143,6 +147,8 @@ class Standard:
     """lambda for a concrete density [kg/m3]; None is normal density."""
     prepare: Callable[[Members, Stations, Options], Any]
     """Gives a Prepared."""
+    with_options: Callable[[Any, Options], Any]
+    """The same Prepared under other options."""
     critical_distance: Callable[[Members, Stations], Floats]
     """Distance of the critical section for shear from the face of a support, for stations at
     the faces [mm] (N)."""

@@ -4,8 +4,8 @@ from __future__ import annotations
 
 import math
 from collections.abc import Callable
-from dataclasses import dataclass
 from functools import lru_cache
+from typing import NamedTuple
 
 from ifccheck.beam import Beam, Given, Remark
 from ifccheck.brief.statements import MaterialStatement
@@ -16,8 +16,7 @@ _WEIGHT_OF_DENSITY = 9.80665e-9
 """Unit weight [N/mm3] for each kg/m3, at standard gravity."""
 
 
-@dataclass(frozen=True, slots=True)
-class Concrete:
+class Concrete(NamedTuple):
     """The concrete that a beam is rated with."""
 
     strength: Given

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass
+from typing import NamedTuple
 
 from ifccheck.beam import Bars, Beam, Face, Given, Reinforcement, Remark, Stirrups
 from ifccheck.brief.statements import MaterialStatement
@@ -13,8 +13,7 @@ from ifccheck.subjects.findings import NO_MATERIAL, Findings, Sources
 _LAYOUT_AGGREGATE = 20.0
 
 
-@dataclass(frozen=True, slots=True)
-class Steel:
+class Steel(NamedTuple):
     """The reinforcement that a beam is rated with."""
 
     bars: tuple[Bars, ...]

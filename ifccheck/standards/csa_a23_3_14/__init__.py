@@ -17,6 +17,7 @@ from ifccheck.standards.csa_a23_3_14.sections import (
     Prepared,
     critical_distance,
     prepare,
+    with_options,
 )
 from ifccheck.standards.csa_a23_3_14.shear_check import SHEAR
 
@@ -95,6 +96,7 @@ STANDARD = Standard(
     clear_spacing=clear_spacing,
     density_factor=density_factor,
     prepare=prepare,
+    with_options=with_options,
     critical_distance=critical_distance,
     limit_states=(
         flexure.FLEXURE_SAGGING,

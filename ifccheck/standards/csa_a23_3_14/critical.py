@@ -16,7 +16,7 @@ REACH = 1e-5
 class Surroundings:
     """The critical section and the faces as seen from each station; one row per station (N)."""
 
-    simplified: Bools
+    simplified: bool
     """Shear by 11.3.6.3, else by 11.3.6.4"""
     critical_distance: Floats
     """Distance to the critical section at dv from the nearer face [mm]; 0 beyond it"""
@@ -103,21 +103,22 @@ def surroundings(
     """
     first = np.flatnonzero(np.diff(beam, prepend=-1))
     counts = np.diff(first, append=beam.size)
-
-    def of_beam(reduce: np.ufunc, values: Floats) -> Floats:
-        return np.repeat(reduce.reduceat(values, first), counts)
-
-    start = of_beam(np.minimum, np.where(inside, x, np.inf))
-    end = of_beam(np.maximum, np.where(inside, x, -np.inf))
+    faces = np.stack(
+        [
+            np.minimum.reduceat(np.where(inside, x, np.inf), first),
+            np.maximum.reduceat(np.where(inside, x, -np.inf), first),
+        ]
+    )
     distance = critical_shear_depth(
         sagging_depth=sagging_depth,
         hogging_depth=hogging_depth,
         sagging_area=sagging_area_full,
         hogging_area=hogging_area_full,
     )
-    rows, reach = _critical_rows(x, start, end, distance, first, counts)
+    rows, reach = _critical_rows(x, faces, distance, first, counts)
+    start, end = np.repeat(faces, counts, axis=1)
     return Surroundings(
-        simplified=np.full(x.shape, simplified),
+        simplified=simplified,
         critical_distance=reach,
         critical_area_sagging=sagging_area[rows],
         critical_area_hogging=hogging_area[rows],
@@ -137,34 +138,35 @@ def _least_lever(lever: Floats, shear_depth: Floats, first: Ints, counts: Ints) 
 
 
 def _critical_rows(
-    x: Floats, start: Floats, end: Floats, distance: Floats, first: Ints, counts: Ints
+    x: Floats, faces: Floats, distance: Floats, first: Ints, counts: Ints
 ) -> tuple[Ints, Floats]:
-    """Row of the critical section of each station (itself beyond it), and how far it is."""
-    rows = np.arange(x.size)
-    middle = 0.5 * (start + end)
-    near_start = x <= middle
-    face = np.where(near_start, start, end)
-    face_row = np.where(
-        near_start, _rows_at(x, start, first, counts), _rows_at(x, end, first, counts)
-    )
-    from_face = distance[face_row]
-    place = np.where(near_start, face + from_face, face - from_face)
-    nearer = np.where(near_start, x < place - REACH, x > place + REACH) & np.isfinite(face)
-    found = _rows_at(x, place, first, counts)
-    at_section = nearer & (np.abs(x[found] - place) <= REACH)
-    return np.where(at_section, found, rows), np.where(at_section, np.abs(place - x), 0.0)
+    """Row of the critical section of each station (itself beyond it), and how far it is.
+
+    The faces are those at the start and at the end of each beam (2, B).
+    """
+    from_face = distance[_rows_at(x, faces, first, counts)]
+    sections = faces + np.array([[1.0], [-1.0]]) * from_face
+    found = _rows_at(x, sections, first, counts)
+    held = np.isfinite(faces) & (np.abs(x[found] - sections) <= REACH)
+    middle = np.where(np.isfinite(faces), faces, 0.0).mean(axis=0)
+    half = (x > np.repeat(middle, counts)) * first.size
+    half += np.repeat(np.arange(first.size), counts)
+    place = sections.ravel()[half]
+    before = np.where(half < first.size, place - x, x - place)
+    nearer = held.ravel()[half] & (before > REACH)
+    rows = np.where(nearer, found.ravel()[half], np.arange(x.size))
+    return rows, np.where(nearer, before, 0.0)
 
 
 def _rows_at(x: Floats, place: Floats, first: Ints, counts: Ints) -> Ints:
-    """Row of the station of the same beam that lies nearest to a place of that beam."""
-    beam = np.repeat(np.arange(first.size), counts)
+    """Row of the station that lies nearest to each place of a beam (places, B)."""
     span = float(np.ptp(x)) + 1.0
     low = float(x.min(initial=0.0))
     wanted = np.clip(np.nan_to_num(place, posinf=low, neginf=low) - low, 0.0, span)
-    key = 2.0 * span * beam + (x - low)
-    target = 2.0 * span * beam + wanted
-    last = first[beam] + counts[beam] - 1
-    right = np.clip(np.searchsorted(key, target), first[beam], last)
-    left = np.clip(right - 1, first[beam], last)
+    beam = np.arange(first.size)
+    key = np.repeat(2.0 * span * beam, counts) + (x - low)
+    last = first + counts - 1
+    right = np.clip(np.searchsorted(key, 2.0 * span * beam + wanted), first, last)
+    left = np.clip(right - 1, first, last)
     nearest: Ints = np.where(np.abs(x[left] - place) < np.abs(x[right] - place), left, right)
     return nearest

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass, fields, replace
+from dataclasses import dataclass, fields
 from typing import Any, ClassVar, Protocol, TypeVar
 
 import numpy as np
@@ -40,15 +40,14 @@ State = TypeVar("State", bound=_Dataclass)
 
 
 def take_rows(state: State, rows: Ints | slice) -> State:
-    """The same state at the given rows of the first axis, nested states included."""
-    taken: dict[str, Any] = {}
-    for item in fields(state):
-        value = getattr(state, item.name)
-        if value is None:
-            continue
-        nested = hasattr(value, "__dataclass_fields__")
-        taken[item.name] = take_rows(value, rows) if nested else value[rows]
-    return replace(state, **taken)
+    """The same state at the given rows of the first axis of its arrays, nested states included."""
+    return type(state)(*(_taken(getattr(state, name), rows) for name in state.__dataclass_fields__))
+
+
+def _taken(value: Any, rows: Ints | slice) -> Any:
+    if isinstance(value, np.ndarray):
+        return value[rows]
+    return take_rows(value, rows) if hasattr(value, "__dataclass_fields__") else value
 
 
 @dataclass(frozen=True, slots=True)

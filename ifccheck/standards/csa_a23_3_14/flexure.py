@@ -291,7 +291,6 @@ FLEXURE_SAGGING = LimitState(
     clause=CLAUSE,
     covers="flexure",
     demand_unit="N*mm",
-    linear=True,
     check=_check_sagging,
     lines=LINES,
 )
@@ -302,7 +301,6 @@ FLEXURE_HOGGING = LimitState(
     clause=CLAUSE,
     covers="flexure",
     demand_unit="N*mm",
-    linear=True,
     check=_check_hogging,
     lines=LINES,
 )
@@ -332,4 +330,9 @@ def _quick(resists: _Resistances, demand: Demand) -> tuple[tuple[Floats, Floats]
     )
 
 
-QUICK_FLEXURE = Quick((FLEXURE_SAGGING, FLEXURE_HOGGING), _resistances, _quick)
+def _moments(demand: Demand) -> tuple[Floats, Floats]:
+    """The moment that tensions the soffit, and that which tensions the top."""
+    return demand.moment, -demand.moment
+
+
+QUICK_FLEXURE = Quick((FLEXURE_SAGGING, FLEXURE_HOGGING), _resistances, _quick, demanded=_moments)

@@ -9,6 +9,7 @@ import numpy as np
 from ifccheck.mechanics.angles import cotangent
 from ifccheck.mechanics.arrays import Bools, Demand, Floats
 from ifccheck.standards.contract import CalculationLine, Check, LimitState
+from ifccheck.standards.csa_a23_3_14.cracked import Acting, Cracked, acting, area_there
 from ifccheck.standards.csa_a23_3_14.sections import Prepared
 from ifccheck.standards.csa_a23_3_14.shear_check import (
     Section,
@@ -28,7 +29,7 @@ from ifccheck.standards.csa_a23_3_14.tension_face import (
     utilisation_of,
     worse_face,
 )
-from ifccheck.standards.csa_a23_3_14.web import Acting, Cracked, Web, acting
+from ifccheck.standards.csa_a23_3_14.web import Web
 
 
 def tension_side_force(
@@ -185,22 +186,27 @@ def check(prepared: Prepared, demand: Demand) -> Check:
 def quick_face(web: Web, demand: Demand, acts: Acting, cracked: Cracked) -> tuple[Floats, Floats]:
     """Utilisation and resistance alone, with one face in flexural tension."""
     sides = _both_sides(web, demand, acts, cracked)
-    return sides.utilisation, np.where(web.beyond_materials, np.nan, sides.steel)
+    if not web.doubtful:
+        return sides.utilisation, sides.steel
+    beyond = web.rest.beyond_materials[web.rows()]
+    return sides.utilisation, np.where(beyond, np.nan, sides.steel)
 
 
 def _evaluate(section: Section, demand: Demand) -> tuple[LongitudinalDetails, Floats]:
     web, (shear, cracked) = section.web, evaluate(section, demand)
     with np.errstate(divide="ignore", invalid="ignore", over="ignore"):
         sides = _both_sides(web, demand, acting(web, demand), cracked)
-    governs, (peak, other_peak) = sides.compressed, _peaks(web, demand)
+    never, (peak, other_peak) = np.zeros(sides.force.shape, np.bool_), _peaks(web, demand)
+    governs = never if sides.compressed is None else sides.compressed
+    outside = never if sides.outside is None else sides.outside
     known = replace(shear, stirrup_term=sides.stirrup_term)
     details = LongitudinalDetails(
         **{f.name: getattr(known, f.name) for f in fields(known)},
         greatest_moment=np.where(governs, other_peak, peak),
-        lever_arm=np.where(governs, web.other_lever_arm, web.lever_arm),
-        tension_side=~governs & ~sides.outside,
-        compression_side=governs & ~sides.outside,
-        by_limit=sides.outside,
+        lever_arm=np.where(governs, web.rest.other_lever_arm[web.rows()], web.lever_arm),
+        tension_side=~governs & ~outside,
+        compression_side=governs & ~outside,
+        by_limit=outside,
         force=sides.force,
         steel=sides.steel,
     )
@@ -211,10 +217,10 @@ def _evaluate(section: Section, demand: Demand) -> tuple[LongitudinalDetails, Fl
 class _Sides:
     """The worse of the flexural tension side and the compression side."""
 
-    compressed: Bools
-    """The flexural compression side governs"""
-    outside: Bools
-    """The angle is outside its range"""
+    compressed: Bools | None
+    """The flexural compression side governs; None where it nowhere does"""
+    outside: Bools | None
+    """The angle is outside its range; None where it nowhere is"""
     stirrup_term: Floats
     """Vs, as far as it is known [N]"""
     force: Floats
@@ -230,30 +236,55 @@ def _both_sides(web: Web, demand: Demand, acts: Acting, cracked: Cracked) -> _Si
     Where theta or the stirrups are not known, the force that need not be exceeded stands in;
     the steel that suffices for that suffices, and nothing is said otherwise.
     """
-    outside = cracked.beyond_strain | web.beyond_simplified
-    outside |= ~(web.simplified | (cracked.area > 0.0)) | np.isnan(web.shear_depth)
-    stirrup_term = np.where(web.legs_unknown, 0.0, cracked.stirrup_term)
-    cot_theta = np.where(outside, np.nan, cracked.cot_theta)
+    outside, cot_theta, stirrup_term = (
+        _outside(web, cracked),
+        cracked.cot_theta,
+        cracked.stirrup_term,
+    )
+    if outside is not None:
+        cot_theta = np.where(outside, np.nan, cot_theta)
+    if web.doubtful:
+        stirrup_term = np.where(web.rest.legs_unknown[web.rows()], 0.0, stirrup_term)
     shift = _shift(acts.own_shear, stirrup_term, cot_theta)
     by_moment = acts.moment / web.shear_depth
     peak, other_peak = _peaks(web, demand)
-    tension = _tension_side(by_moment, shift, peak / web.lever_arm)
-    force, steel = tension, web.steel
-    found = utilisation_of(tension, steel, web.inside)
-    compressed = np.zeros(found.shape, dtype=np.bool_)
+    force, steel = _tension_side(by_moment, shift, peak / web.lever_arm), web.steel
+    found, compressed = utilisation_of(force, steel, web.outside), None
     if other_peak.any():  # where no moment ever tensions that side, there is no force
-        limit = other_peak / web.other_lever_arm
+        rest, rows = web.rest, web.rows()
+        limit = other_peak / rest.other_lever_arm[rows]
         compression = _compression_side(by_moment, shift, limit)
         compression = np.where(_in_fan(web, demand, cot_theta), 0.0, compression)
-        second = utilisation_of(compression, web.other_steel, web.inside)
+        other_steel = rest.other_steel[rows]
+        second = utilisation_of(compression, other_steel, web.outside)
         compressed = second > found
-        force = np.where(compressed, compression, tension)
-        steel = np.where(compressed, web.other_steel, steel)
+        force = np.where(compressed, compression, force)
+        steel = np.where(compressed, other_steel, steel)
         found = np.where(compressed, second, found)
-    doubtful = (outside | web.legs_unknown) & (found > 1.0) & (steel > 0.0)
-    missing = doubtful | (web.beyond_materials & (found > 0.0))
-    utilisation = np.where(missing, np.nan, found)
-    return _Sides(compressed, outside, stirrup_term, force, steel, utilisation)
+    if outside is not None or web.doubtful:
+        found = _known(web, outside, found, steel)
+    return _Sides(compressed, outside, stirrup_term, force, steel, found)
+
+
+def _outside(web: Web, cracked: Cracked) -> Bools | None:
+    """Where the angle is outside its range."""
+    if not web.doubtful:
+        return cracked.beyond_strain
+    beyond = web.rest.beyond_simplified[web.rows()] | np.isnan(web.shear_depth)
+    outside: Bools = np.broadcast_to(beyond, cracked.counting.shape)
+    if cracked.beyond_strain is not None:
+        outside = outside | cracked.beyond_strain
+    return outside if web.simplified else outside | ~(area_there(web, cracked) > 0.0)
+
+
+def _known(web: Web, outside: Bools | None, utilisation: Floats, steel: Floats) -> Floats:
+    """The utilisation, nan where nothing can be said."""
+    rest, rows = web.rest, web.rows()
+    doubtful = rest.legs_unknown[rows]
+    doubtful = doubtful if outside is None else doubtful | outside
+    missing = doubtful & (utilisation > 1.0) & (steel > 0.0)
+    missing |= rest.beyond_materials[rows] & (utilisation > 0.0)
+    return np.where(missing, np.nan, utilisation)
 
 
 def _peaks(web: Web, demand: Demand) -> tuple[Floats, Floats]:
@@ -270,7 +301,10 @@ def _in_fan(web: Web, demand: Demand, cot_theta: Floats) -> Bools:
     the face of a support the compression fans out from the support and no such crack forms.
     """
     lessens_to_start = demand.shear < 0.0 if web.top else demand.shear > 0.0
-    to_face = np.where(lessens_to_start, web.start_distance, web.end_distance)
+    start, end = (
+        distance[web.rows()] for distance in (web.rest.start_distance, web.rest.end_distance)
+    )
+    to_face = np.where(lessens_to_start, start, end)
     fan: Bools = to_face < web.shear_depth * cot_theta
     return fan
 
@@ -314,7 +348,6 @@ LONGITUDINAL = LimitState(
     clause="11.3.9",
     covers="longitudinal tension",
     demand_unit="N",
-    linear=False,
     check=check,
     lines=(*SECTION_LINES, *STIRRUP_LINES, *CRACK_LINES, *STIRRUP_TERM_LINES, *FORCE_LINES),
 )

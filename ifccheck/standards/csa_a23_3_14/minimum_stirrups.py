@@ -171,7 +171,6 @@ MINIMUM_STIRRUPS = LimitState(
     clause="11.2.8.1",
     covers="minimum stirrups",
     demand_unit="mm2/mm",
-    linear=False,
     check=check,
     lines=LINES,
 )

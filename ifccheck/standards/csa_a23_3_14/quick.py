@@ -2,18 +2,21 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
+
 import numpy as np
 
 from ifccheck.mechanics.arrays import Demand, Floats
 from ifccheck.standards.contract import Quick
 from ifccheck.standards.csa_a23_3_14 import longitudinal, shear_check
+from ifccheck.standards.csa_a23_3_14.cracked import acting, crack
 from ifccheck.standards.csa_a23_3_14.flexure import QUICK_FLEXURE
 from ifccheck.standards.csa_a23_3_14.minimum_stirrups import QUICK_MINIMUM_STIRRUPS
 from ifccheck.standards.csa_a23_3_14.tension_face import Faces, worse_faces
-from ifccheck.standards.csa_a23_3_14.web import Web, acting, crack, webs
+from ifccheck.standards.csa_a23_3_14.web import Web, webs
 
 
-def _evaluate(faces: Faces[Web], demand: Demand) -> list[tuple[Floats, Floats]]:
+def _evaluate(faces: Faces[Web], demand: Demand) -> Sequence[tuple[Floats, Floats]]:
     """Shear and longitudinal tension, which share the cracked web."""
     with np.errstate(divide="ignore", invalid="ignore", over="ignore"):
         return worse_faces(faces, demand, _evaluate_face)
@@ -21,13 +24,25 @@ def _evaluate(faces: Faces[Web], demand: Demand) -> list[tuple[Floats, Floats]]:
 
 def _evaluate_face(web: Web, demand: Demand) -> tuple[tuple[Floats, Floats], ...]:
     acts = acting(web, demand)
-    cracked = crack(web, acts)
+    cracked = crack(web, acts, strained=False)
     return (
         shear_check.quick_face(web, acts, cracked),
         longitudinal.quick_face(web, demand, acts, cracked),
     )
 
 
-QUICK_WEB = Quick((shear_check.SHEAR, longitudinal.LONGITUDINAL), webs, _evaluate)
+def _turns(faces: Faces[Web], total: Demand, share: Demand) -> tuple[Floats, ...]:
+    """Where |Mf| = Vf dv, beyond which one face in tension is looked at instead of both."""
+    beside = total.moment - share.moment, total.critical_shear - share.critical_shear
+    depths = faces.soffit.shear_depth, faces.top_depth
+    with np.errstate(divide="ignore", invalid="ignore"):
+        return tuple(
+            (depth * beside[1] - beside[0]) / (share.moment - depth * share.critical_shear)
+            for each in depths
+            for depth in (each, -each)
+        )
+
+
+QUICK_WEB = Quick((shear_check.SHEAR, longitudinal.LONGITUDINAL), webs, _evaluate, turns=_turns)
 
 QUICK = (QUICK_FLEXURE, QUICK_WEB, QUICK_MINIMUM_STIRRUPS)

@@ -35,7 +35,7 @@ from ifccheck.standards.csa_a23_3_14.faces import (
     top_steel,
 )
 
-AT_ONCE = 16384
+AT_ONCE = 65536
 """Stations worked on together, so that their arrays stay in the processor's cache."""
 
 
@@ -137,6 +137,12 @@ def prepare(members: Members, stations: Stations, options: Options) -> Prepared:
         surroundings=_surroundings(stations, sagging, hogging, options),
         chords=stations.chords,
     )
+
+
+def with_options(prepared: Prepared, options: Options) -> Prepared:
+    """The same sections by another method for shear."""
+    simplified = options.shear_method == "simplified"
+    return replace(prepared, surroundings=replace(prepared.surroundings, simplified=simplified))
 
 
 def critical_distance(members: Members, stations: Stations) -> Floats:

@@ -171,9 +171,12 @@ def longitudinal_strain(
     CSA A23.3-14, 11.3.6.4
     """
     force = np.maximum(moment / shear_depth, shear) + shear
+    stiffness = 2.0 * STEEL_MODULUS * tension_area
+    if (tension_area > 0.0).all():
+        strain: Floats = force / stiffness
+        return strain
     with np.errstate(divide="ignore", invalid="ignore"):
-        strain = force / (2.0 * STEEL_MODULUS * tension_area)
-    return np.where(force > 0.0, strain, 0.0)
+        return np.where(force > 0.0, force / stiffness, 0.0)
 
 
 def general_beta(*, strain: Floats, crack_spacing: Floats) -> Floats:
@@ -202,7 +205,24 @@ def general_beta(*, strain: Floats, crack_spacing: Floats) -> Floats:
     ----------
     CSA A23.3-14, 11.3.6.4
     """
-    return 0.4 / (1.0 + 1500.0 * strain) * 1300.0 / (1000.0 + crack_spacing)
+    return 0.4 / softening(strain=strain) * 1300.0 / (1000.0 + crack_spacing)
+
+
+def softening(*, strain: Floats) -> Floats:
+    """By what the strain divides the share of the cracked concrete in the general method.
+
+    1 + 1500 eps_x
+
+    Parameters
+    ----------
+    strain
+        eps_x, 0 to 0.003
+
+    References
+    ----------
+    CSA A23.3-14, 11.3.6.4
+    """
+    return 1.0 + 1500.0 * strain
 
 
 def general_theta(*, strain: Floats) -> Floats:

@@ -10,6 +10,14 @@ import numpy as np
 from ifccheck.mechanics.arrays import Bools, Demand, Floats, Ints
 from ifccheck.standards.contract import Check, LimitState, Outside
 from ifccheck.standards.csa_a23_3_14 import shear as formulas
+from ifccheck.standards.csa_a23_3_14.cracked import (
+    Acting,
+    Cracked,
+    acting,
+    area_there,
+    crack,
+    has_steel,
+)
 from ifccheck.standards.csa_a23_3_14.sections import Prepared
 from ifccheck.standards.csa_a23_3_14.shear_lines import SHEAR_LINES
 from ifccheck.standards.csa_a23_3_14.stirrups import greatest_stirrup_spacing
@@ -18,15 +26,7 @@ from ifccheck.standards.csa_a23_3_14.tension_face import (
     utilisation_of,
     worse_face,
 )
-from ifccheck.standards.csa_a23_3_14.web import (
-    Acting,
-    Cracked,
-    Web,
-    acting,
-    crack,
-    minimum_area,
-    web,
-)
+from ifccheck.standards.csa_a23_3_14.web import Web, minimum_area, web
 
 
 @dataclass(frozen=True, slots=True)
@@ -154,44 +154,36 @@ def _section(prepared: Prepared, *, top: bool) -> Section:
     )
 
 
-@dataclass(frozen=True, slots=True)
-class _Concrete:
-    crack_spacing: Floats
-    beta: Floats
-    term: Floats
+def _concrete_term(web: Web, cracked: Cracked) -> Floats:
     """Vc [N]"""
+    term: Floats = web.concrete_plain + web.concrete_gain * cracked.counting
+    if web.doubtful:
+        unknown = web.rest.plain_unknown[web.rows()] & (cracked.counting == 0.0)
+        term = np.where(unknown, np.nan, term)
+    return term if web.simplified else term / formulas.softening(strain=cracked.strain)
 
 
-def _concrete(web: Web, cracked: Cracked) -> _Concrete:
-    effective = cracked.effective
-    spacing = np.where(effective, formulas.STIRRUP_CRACK_SPACING, web.crack_spacing)
-    if web.simplified.all():
-        beta = formulas.simplified_beta(
-            stirrups=effective,
-            shear_depth=web.whole_depth,
-            crack_spacing=web.crack_spacing,
-            aggregate_size=web.aggregate_size,
-        )
-    else:
-        beta = formulas.general_beta(strain=cracked.strain, crack_spacing=spacing)
-    return _Concrete(spacing, beta, web.concrete_unit * beta)
-
-
-def _resistance(web: Web, cracked: Cracked, concrete: _Concrete) -> Floats:
+def _resistance(web: Web, cracked: Cracked) -> Floats:
     """Vr [N]; nan outside the range of the method.
 
     A face that holds no tension steel at all resists no shear, for clause 11.3 presumes that
     steel.
     """
-    resistance = np.minimum(concrete.term + cracked.stirrup_term, web.greatest)
-    outside = cracked.beyond_strain | web.beyond_simplified | web.beyond_materials
-    return np.where(outside, np.nan, np.where(cracked.has_steel, resistance, 0.0))
+    resistance = np.minimum(_concrete_term(web, cracked) + cracked.stirrup_term, web.greatest)
+    if web.doubtful:
+        rest, rows = web.rest, web.rows()
+        held = has_steel(web, cracked.nearer, resistance.shape)
+        outside = rest.beyond_simplified[rows] | rest.beyond_materials[rows]
+        resistance = np.where(outside, np.nan, np.where(held, resistance, 0.0))
+    if cracked.beyond_strain is not None:
+        resistance = np.where(cracked.beyond_strain, np.nan, resistance)
+    return resistance
 
 
 def quick_face(web: Web, acts: Acting, cracked: Cracked) -> tuple[Floats, Floats]:
     """Utilisation and resistance alone, with one face in tension."""
-    resistance = _resistance(web, cracked, _concrete(web, cracked))
-    return utilisation_of(acts.shear, resistance, web.inside), resistance
+    resistance = _resistance(web, cracked)
+    return utilisation_of(acts.shear, resistance, web.outside), resistance
 
 
 def evaluate(section: Section, demand: Demand) -> tuple[ShearDetails, Cracked]:
@@ -199,9 +191,7 @@ def evaluate(section: Section, demand: Demand) -> tuple[ShearDetails, Cracked]:
     acts = acting(section.web, demand)
     with np.errstate(divide="ignore", invalid="ignore", over="ignore"):
         cracked = crack(section.web, acts)
-        concrete = _concrete(section.web, cracked)
-        details = _details(section, acts, cracked, concrete, _chords(section.web, demand))
-        return details, cracked
+        return _details(section, acts, cracked, _chords(section.web, demand)), cracked
 
 
 def _chords(web: Web, demand: Demand) -> dict[str, Any]:
@@ -223,33 +213,32 @@ def _chords(web: Web, demand: Demand) -> dict[str, Any]:
 
 
 def _details(
-    section: Section,
-    acts: Acting,
-    cracked: Cracked,
-    concrete: _Concrete,
-    chords: dict[str, Any],
+    section: Section, acts: Acting, cracked: Cracked, chords: dict[str, Any]
 ) -> ShearDetails:
-    web = section.web
-    distance = _distance(web, cracked)
+    web, rest, rows = section.web, section.web.rest, section.web.rows()
+    counting, distance = cracked.counting > 0.0, _distance(web, cracked)
+    area, held = area_there(web, cracked), has_steel(web, cracked.nearer, counting.shape)
+    spacing = np.where(counting, formulas.STIRRUP_CRACK_SPACING, rest.crack_spacing[rows])
+    never = np.zeros(counting.shape, dtype=np.bool_)
     return ShearDetails(
         shear=acts.shear,
         own_shear=acts.own_shear,
         moment=acts.moment,
         top_in_tension=np.full(web.shear_depth.shape, web.top),
         shear_depth=web.shear_depth,
-        shear_loss=web.shear_loss,
+        shear_loss=rest.shear_loss[rows],
         web_width=section.web_width,
         concrete_strength=section.concrete_strength,
         density_factor=section.density_factor,
-        aggregate_size=web.aggregate_size,
-        tension_area=cracked.area,
+        aggregate_size=rest.aggregate_size[rows],
+        tension_area=area,
         distance=distance,
         strain_moment=np.maximum(
             acts.moment + acts.own_shear * distance, acts.shear * web.shear_depth
         ),
         strain=cracked.strain,
-        crack_spacing=concrete.crack_spacing,
-        beta=concrete.beta,
+        crack_spacing=spacing,
+        beta=_beta(web, cracked, spacing),
         theta=cracked.theta,
         stirrup_area=section.stirrup_area,
         stirrup_spacing=section.stirrup_spacing,
@@ -262,16 +251,29 @@ def _details(
             web_width=section.web_width,
             shear_depth=web.shear_depth,
         ),
-        concrete_term=concrete.term,
+        concrete_term=_concrete_term(web, cracked),
         stirrup_term=cracked.stirrup_term,
         greatest=web.greatest,
-        steel_present=cracked.has_steel.astype(np.float64),
-        resistance=_resistance(web, cracked, concrete),
-        **_methods(section, cracked),
+        steel_present=held.astype(np.float64),
+        resistance=_resistance(web, cracked),
+        **_methods(section, counting, area),
         **chords,
-        beyond_strain=cracked.beyond_strain,
-        beyond_simplified=web.beyond_simplified,
-        beyond_materials=web.beyond_materials,
+        beyond_strain=never if cracked.beyond_strain is None else cracked.beyond_strain,
+        beyond_simplified=rest.beyond_simplified[rows],
+        beyond_materials=rest.beyond_materials[rows],
+    )
+
+
+def _beta(web: Web, cracked: Cracked, spacing: Floats) -> Floats:
+    """Share of the cracked concrete."""
+    if not web.simplified:
+        return formulas.general_beta(strain=cracked.strain, crack_spacing=spacing)
+    rest, rows = web.rest, web.rows()
+    return formulas.simplified_beta(
+        stirrups=cracked.counting > 0.0,
+        shear_depth=web.shear_depth + rest.shear_loss[rows],
+        crack_spacing=rest.crack_spacing[rows],
+        aggregate_size=rest.aggregate_size[rows],
     )
 
 
@@ -279,17 +281,21 @@ def _distance(web: Web, cracked: Cracked) -> Floats:
     """Distance to the section at which the strain is taken [mm]."""
     distance = np.zeros(cracked.strain.shape)
     if cracked.at_critical[0].size:
-        distance[cracked.at_critical] = web.critical_distance[cracked.at_critical[-1]]
+        distance[cracked.at_critical] = web.rest.critical_distance[
+            web.rows(cracked.at_critical[-1])
+        ]
     return distance
 
 
-def _methods(section: Section, cracked: Cracked) -> dict[str, Any]:
+def _methods(section: Section, effective: Bools, area: Floats) -> dict[str, Any]:
     """Which method and which of its forms holds, by the names of the details."""
-    web, effective, plain = section.web, cracked.effective, ~cracked.effective
-    simplified = web.simplified
-    by_depth = web.aggregate_size >= formulas.SIMPLIFIED_AGGREGATE
-    opened = web.shear_loss != 0.0
-    general = ~simplified & (cracked.area > 0.0)
+    web, plain = section.web, ~effective
+    simplified = np.full(web.outside.shape, web.simplified)
+    rest, rows = web.rest, web.rows()
+    aggregate, unknown = rest.aggregate_size[rows], rest.legs_unknown[rows]
+    by_depth, lost = aggregate >= formulas.SIMPLIFIED_AGGREGATE, rest.shear_loss[rows]
+    opened = lost != 0.0
+    general = ~simplified & (area > 0.0)
     computable = simplified | general
     return {
         "has_stirrups": section.stirrup_area > 0.0,
@@ -299,7 +305,7 @@ def _methods(section: Section, cracked: Cracked) -> dict[str, Any]:
         "general_effective": effective & general,
         "general_plain": plain & general & ~opened,
         "opened": opened,
-        "disturbed": np.isnan(web.shear_loss),
+        "disturbed": np.isnan(lost),
         "opened_general_plain": plain & general & opened,
         "simplified": simplified,
         "simplified_effective": effective & simplified,
@@ -309,8 +315,8 @@ def _methods(section: Section, cracked: Cracked) -> dict[str, Any]:
         "opened_simplified_plain_spacing": plain & simplified & ~by_depth & opened,
         "computable": computable,
         "without_steel": ~computable,
-        "idle": plain & ~web.legs_unknown,
-        "legs_unknown": web.legs_unknown,
+        "idle": plain & ~unknown,
+        "legs_unknown": unknown,
         "stirrup_force": effective & computable,
     }
 
@@ -340,7 +346,9 @@ def outside_of(details: Any, checked: Bools) -> tuple[Outside, ...]:
 
 def _evaluate(section: Section, demand: Demand) -> tuple[ShearDetails, Floats]:
     details, _ = evaluate(section, demand)
-    return details, utilisation_of(details.shear, details.resistance, section.web.inside)
+    with np.errstate(divide="ignore", invalid="ignore"):
+        utilisation = utilisation_of(details.shear, details.resistance, section.web.outside)
+    return details, utilisation
 
 
 def check(prepared: Prepared, demand: Demand) -> Check:
@@ -361,7 +369,6 @@ SHEAR = LimitState(
     clause="11.3",
     covers="shear",
     demand_unit="N",
-    linear=False,
     check=check,
     lines=SHEAR_LINES,
 )

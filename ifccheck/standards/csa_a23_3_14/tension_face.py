@@ -61,8 +61,6 @@ def faces_in_tension(faces: Faces[AnyFace], demand: Demand) -> tuple[Bools, Bool
     arrangement of the loads does. Where neither holds, the soffit is.
     """
     sagging, hogging = demand.moment > 0.0, demand.moment < 0.0
-    if not (demand.can_hog.any() or hogging.any()):
-        return np.ones(hogging.shape, dtype=np.bool_), hogging
     moment, shear = np.abs(demand.moment), np.abs(demand.critical_shear)
     soffit = sagging | ((moment < shear * faces.soffit.shear_depth) & demand.can_sag)
     top = hogging | ((moment < shear * faces.top_depth) & demand.can_hog)
@@ -132,16 +130,16 @@ def worse_faces(
     faces: Faces[AnyFace],
     demand: Demand,
     evaluate: Callable[[AnyFace, Demand], Sequence[tuple[Floats, Floats]]],
-) -> list[tuple[Floats, Floats]]:
+) -> Sequence[tuple[Floats, Floats]]:
     """Utilisation and resistance of several limit states, each with its worse face in tension.
 
     ``evaluate(face, demand)`` gives those of one face.
     """
+    first = evaluate(faces.soffit, demand)
+    if not (demand.can_hog.any() or (demand.moment < 0.0).any()):
+        return first
     soffit, top = faces_in_tension(faces, demand)
-    first, tried = evaluate(faces.soffit, demand), np.flatnonzero(top)
-    if not tried.size:
-        return list(first)
-    found = []
+    tried, found = np.flatnonzero(top), []
     second = evaluate(faces.top_at(tried), demand.take(tried))
     for (one, resistance), (other, other_resistance) in zip(first, second, strict=True):
         taken = _worse(other, one[tried]) | ~soffit[tried]
@@ -165,9 +163,9 @@ def _severity(utilisation: Floats) -> Floats:
     return np.where(np.isnan(utilisation), np.nextafter(1.0, 2.0), utilisation)
 
 
-def utilisation_of(demand: Floats, resistance: Floats, inside: Bools) -> Floats:
+def utilisation_of(demand: Floats, resistance: Floats, outside: Bools) -> Floats:
     """Demand over resistance: 0 where nothing is demanded or outside the faces of the supports,
     inf where something is demanded of nothing, nan where either is not known."""
-    with np.errstate(divide="ignore", invalid="ignore"):
-        ratio = demand / resistance
-    return np.where((demand <= 0.0) | ~inside, 0.0, ratio)
+    ratio = np.asarray(demand / resistance)
+    np.copyto(ratio, 0.0, where=(demand <= 0.0) | outside)
+    return ratio

@@ -1,0 +1,182 @@
+"""What acts on a batch of beams, whatever the standard then asks of it."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import dataclass
+
+import numpy as np
+
+from ifccheck.analysis.combinations import factor_array
+from ifccheck.analysis.effects import Demands, Effects, combine, demands, turning_places
+from ifccheck.analysis.loads import LINE
+from ifccheck.analysis.spans import FREE
+from ifccheck.analysis.statics import CaseEffects, case_effects, join_effects
+from ifccheck.analysis.stations import (
+    Places,
+    StationTable,
+    critical_rows,
+    insert_stations,
+    join_places,
+    make_stations,
+    places,
+)
+from ifccheck.beam import Case, Combination
+from ifccheck.mechanics.arrays import Bools, Floats, Members, Stations
+from ifccheck.rating.assembly import Frame, make_station_arrays, within
+from ifccheck.rating.elements import Elements, ask_nothing, distinct_elements
+from ifccheck.rating.subject import Subject
+from ifccheck.standards import Standard
+
+
+@dataclass(frozen=True, slots=True)
+class Loaded:
+    """Beams (B) under their loads, at every station (N)."""
+
+    frame: Frame
+    stations: StationTable
+    members: Members
+    """With a section for every station in a taper"""
+    arrays: Stations
+    effects: Effects
+    factors: Floats
+    """Unfavourable and favourable factor of each case in each combination (C, K, 2)"""
+    acting: Demands
+    elements: Elements
+    disturbed: Bools
+    """Stations beside steps, at which nothing is demanded of a section (N)"""
+
+
+def loaded(
+    frame: Frame,
+    subjects: Sequence[Subject],
+    standard: Standard,
+    cases: Sequence[Case],
+    combinations: Sequence[Combination],
+) -> Loaded:
+    """Find the stations of the beams and what acts there.
+
+    Parameters
+    ----------
+    frame, subjects
+        At least one beam (B).
+    standard
+        Tells where shear is critical.
+    cases
+        All load cases, ``self`` among them.
+    combinations
+        Strength combinations, exclusions already worked out.
+    """
+    factors = factor_array(combinations, cases)
+    critical = _critical_sections(subjects, frame, standard)
+    effects, stations = _effects(frame, critical, factors)
+    acting = demands(
+        effects,
+        critical_rows(stations, critical[:, 0], critical[:, 1]),
+        [row for row, case in enumerate(cases) if case.rated],
+        unbounded=frame.side_loaded,
+    )
+    arrays = make_station_arrays(frame, stations.beam, stations.x, stations.side)
+    disturbed = frame.disturbed.hold(stations.beam, stations.x)
+    elements = distinct_elements(effects, acting, stations.beam)
+    ask_nothing(elements, disturbed)
+    return Loaded(frame, stations, *arrays, effects, factors, acting, elements, disturbed)
+
+
+def _critical_sections(subjects: Sequence[Subject], frame: Frame, standard: Standard) -> Floats:
+    """x of the critical section for shear at either end of each beam [mm] (B, 2).
+
+    nan where nearer stations must be checked with their own shear: a free end, an end whose
+    reaction does not compress it, or a concentrated load or an opening between the face and that
+    section.
+    """
+    beams = len(subjects)
+    beam = np.repeat(np.arange(beams), 2)
+    side = np.tile([1, -1], beams)
+    at_faces = make_station_arrays(frame, beam, frame.faces.ravel(), side)
+    distance = standard.critical_distance(*at_faces)
+    if frame.runs.beam.size > beams or frame.runs.tapers:
+        reach = np.where(np.isnan(distance), 0.0, distance)
+        there = make_station_arrays(frame, beam, frame.faces.ravel() + reach * side, side)
+        distance = np.minimum(distance, standard.critical_distance(*there))
+    distance = distance.reshape(beams, 2)
+    critical = frame.faces + distance * np.array([1.0, -1.0])
+    direct = np.array([subject.direct for subject in subjects])
+    held = np.stack([frame.spans.start_kind, frame.spans.end_kind], axis=-1) != FREE
+    middle = frame.faces.mean(axis=1, keepdims=True)
+    short = (critical - middle) * np.array([1.0, -1.0]) > 0.0
+    usable = direct & held & ~short & ~_concentrated(frame, critical) & ~_opened(frame, critical)
+    return np.where(usable, critical, np.nan)
+
+
+def _concentrated(frame: Frame, critical: Floats) -> Bools:
+    """Whether a concentrated load or moment lies between the face and the section (B, 2).
+
+    A line load is one where it is shorter than twice the distance between them, or than a
+    quarter of the distance between the faces: it comes down as a strut of its own. Self weight,
+    which is cut at every run, is none.
+    """
+    found = np.zeros(critical.shape, dtype=np.bool_)
+    loads, faces = frame.loads, frame.faces
+    distance = np.abs(critical - faces)
+    short = np.maximum(2.0 * distance, 0.25 * np.abs(faces[:, 1:] - faces[:, :1]))
+    for end, near in (
+        (0, loads.start <= critical[loads.beam, 0]),
+        (1, loads.end >= critical[loads.beam, 1]),
+    ):
+        lump = (loads.kind != LINE) | (loads.end - loads.start < short[loads.beam, end])
+        lump &= loads.case != frame.self_case
+        found[loads.beam[near & lump], end] = True
+    return found
+
+
+def _opened(frame: Frame, critical: Floats) -> Bools:
+    """Whether an opening begins to take depth between the face and the section (B, 2)."""
+    found = np.zeros(critical.shape, dtype=np.bool_)
+    losses = frame.losses
+    (first, last), (near, far) = frame.faces[losses.beam].T, critical[losses.beam].T
+    found[losses.beam[(losses.start > first) & (losses.start <= near)], 0] = True
+    found[losses.beam[(losses.end < last) & (losses.end >= far)], 1] = True
+    return found
+
+
+def _effects(frame: Frame, critical: Floats, factors: Floats) -> tuple[Effects, StationTable]:
+    """Effects at stations that include every place where a greatest moment turns."""
+    fixed = join_places(*_fixed_places(frame, critical))
+    stations = within(make_stations(frame.spans, frame.loads, fixed), frame.checked)
+
+    def at(where: StationTable) -> CaseEffects:
+        return case_effects(frame.spans, frame.loads, where, factors.shape[1], deflections=False)
+
+    found = at(stations)
+    beam, x = turning_places(found, factors)
+    turns = StationTable(beam, x, np.zeros_like(beam))
+    stations, rows = insert_stations(stations, beam, x)
+    return combine(join_effects(found, at(turns), rows), factors), stations
+
+
+def _fixed_places(frame: Frame, critical: Floats) -> list[Places]:
+    """Everything but loads at which something changes along the beams."""
+    beams = np.arange(critical.shape[0])
+    m, runs, zones, losses = frame.members, frame.runs, frame.zones, frame.losses
+    row, layer = np.nonzero(m.layer_area > 0.0)
+    edges = [
+        (np.repeat(beams, 2), frame.faces.ravel(), True),
+        (np.repeat(beams, 2), frame.checked.ravel(), False),
+        (np.repeat(beams, 2), critical.ravel(), False),
+        (runs.beam, runs.start, True),
+        (runs.beam, runs.end, True),
+        (row, m.layer_start[row, layer], True),
+        (row, m.layer_end[row, layer], True),
+        (frame.disturbed.beam, frame.disturbed.start, False),
+        (frame.disturbed.beam, frame.disturbed.end, False),
+        (zones.beam, zones.start, True),
+        (zones.beam, zones.end, True),
+        (losses.beam, losses.start, True),
+        (losses.beam, losses.end, True),
+    ]
+    return [
+        places(beam[finite], x[finite], two_sided=both)
+        for beam, x, both in edges
+        for finite in [np.isfinite(x)]
+    ]
