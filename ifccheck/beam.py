@@ -19,13 +19,21 @@ from ifccheck.cases import Case as Case
 from ifccheck.cases import Combination as Combination
 from ifccheck.cases import CombinationKind as CombinationKind
 from ifccheck.cases import Nature as Nature
+from ifccheck.openings import Opening as Opening
+from ifccheck.openings import ShearLoss as ShearLoss
+from ifccheck.slabs import Flange as Flange
+from ifccheck.slabs import Slab as Slab
+from ifccheck.standing import Contact as Contact
+from ifccheck.standing import Line as Line
+from ifccheck.standing import Span as Span
+from ifccheck.standing import Support as Support
+from ifccheck.standing import SupportKind as SupportKind
 
 Vector = tuple[float, float, float]
 Point = tuple[float, float]
 Ring = tuple[Point, ...]
 
 SourceName = Literal["schedule", "bars", "sections", "properties"]
-SupportKind = Literal["pinned", "fixed", "free"]
 LoadKind = Literal["line", "point", "moment"]
 Face = Literal["top", "bottom"]
 RemarkKind = Literal["assumption", "doubt", "note"]
@@ -89,7 +97,10 @@ class Axis:
 
 @dataclass(frozen=True, slots=True)
 class Outline:
-    """A section's outline: the outer ring, then any voids; points (y, z) [mm]."""
+    """A section's outline: the outer ring, then any voids; points (y, z) [mm].
+
+    Where an opening divides it, several outer rings; what lies in an odd number of rings is
+    concrete."""
 
     rings: tuple[Ring, ...]
     name: str = ""
@@ -104,6 +115,23 @@ class Run:
     end: float
     outline: Outline
     outline_end: Outline | None = None
+    whole: Outline | None = None
+    """The outline without the openings that were taken off it; None where there are none."""
+
+
+@dataclass(frozen=True, slots=True)
+class RatedBody:
+    """What is rated of a beam, where that is not its body and nothing else."""
+
+    runs: tuple[Run, ...]
+    """With slab that counts as a flange, without openings"""
+    losses: tuple[ShearLoss, ...]
+    weighed: tuple[Run, ...]
+    """What self weight is that of"""
+    flanges: tuple[Flange, ...] = ()
+    """Slab that counts"""
+    flange_source: str = ""
+    """Where the brief says so"""
 
 
 @dataclass(frozen=True, slots=True)
@@ -228,6 +256,7 @@ class Beam:
     storey: str
     axis: Axis | None
     runs: tuple[Run, ...]
+    """Of the body without its openings"""
     material: str
     concrete_strength: Given | None
     concrete_density: Given | None
@@ -241,6 +270,9 @@ class Beam:
     """Why its strength cannot be read; it counts unless the brief states that of this beam."""
     greatest_density: Given | None = None
     """The greatest density that the model states for its concrete, for its weight [kg/m3]"""
+    openings: tuple[Opening, ...] = ()
+    precast: str = ""
+    """What tells that it is precast; empty where nothing does"""
 
     @property
     def mark(self) -> str:
@@ -326,54 +358,9 @@ class Model:
     storeys: tuple[Storey, ...]
     remarks: tuple[Remark, ...] = ()
     unmeasured: tuple[Unmeasured, ...] = ()
+    slabs: tuple[Slab, ...] = ()
+    """Level slabs, which beams may be cast with"""
     """Beams, columns and members that may rest on any beam of their storey"""
-
-
-class Support(NamedTuple):
-    """How one end of a beam stands."""
-
-    kind: SupportKind
-    bearing: float
-    """Width of the bearing along the axis [mm]; 0 where it is not given."""
-    source: str
-
-
-class Span(NamedTuple):
-    """A span of a line between two supports; places along x of the line [mm]."""
-
-    start: float
-    end: float
-    start_support: Support
-    end_support: Support
-
-
-class Line(NamedTuple):
-    """Beams that act as one member, and its spans."""
-
-    beams: tuple[str, ...]
-    spans: tuple[Span, ...]
-
-
-class Contact(NamedTuple):
-    """Where another member touches a beam: the stretch of x that it covers."""
-
-    beam: str
-    other: str
-    """Name and class of the other member, for people."""
-    other_class: str
-    start: float
-    end: float
-    place: Literal["start", "end", "between"]
-    side: Literal["below", "above", "side", "end"]
-    """``end``: the end of the beam meets the other's face, or is built into it"""
-    other_step: int = 0
-    """Step id of the other member"""
-    beyond: float = 0.0
-    """How far the other reaches past the beam's end, along its axis [mm]; 0 between"""
-    bears: bool = True
-    """Whether it is near enough, and of a kind, to hold a beam; else it may only load it"""
-    doubt: str = ""
-    """Why it cannot be counted on to hold an end; empty where it can"""
 
 
 class Load(NamedTuple):

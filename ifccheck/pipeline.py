@@ -14,11 +14,12 @@ from ifccheck.brief.load import load_brief
 from ifccheck.brief.merging import Matches
 from ifccheck.brief.model import Brief, ScheduleRow
 from ifccheck.brief.schedule import read_schedule
-from ifccheck.brief.selecting import Found, check_reached, join, selections
+from ifccheck.brief.selecting import Found, check_reached, check_scope, join, selections
 from ifccheck.brief.zones import schedule_remarks, with_schedule
 from ifccheck.errors import BriefError, ModelError, UsageError
 from ifccheck.ifc.opening import OpenedModel, open_model
 from ifccheck.ifc.reader import read_model
+from ifccheck.ifc.scoping import NO_CHOICE, Choice, choose
 from ifccheck.ifc.selection import select
 from ifccheck.ifc.step_table import make_step_table
 from ifccheck.memory import uncollected
@@ -55,6 +56,8 @@ class Read:
 
     opened: OpenedModel
     model: Model
+    reached: Mapping[str, int]
+    """How many members each query of the brief's scope reaches, by its place"""
 
 
 @dataclass(frozen=True)
@@ -162,7 +165,10 @@ def read_models(models: Sequence[Path], brief: Brief | None, say: Say) -> tuple[
                 f"{path}: would write results of the same names as {other}: give each model once,"
                 " and rate models of one name into different folders"
             )
-    return tuple(_read(path, brief, say) for path in models)
+    reads = tuple(_read(path, brief, say) for path in models)
+    if brief:
+        check_scope(brief, [read.reached for read in reads])
+    return reads
 
 
 def _read(path: Path, brief: Brief | None, say: Say) -> Read:
@@ -170,10 +176,24 @@ def _read(path: Path, brief: Brief | None, say: Say) -> Read:
     opened = open_model(path)
     say(f"reading {path.name}")
     statements = make_step_table(opened.source, opened.scan)
-    model = read_model(opened, _mapping(brief), statements)
+    choice = _choice(opened, brief)
+    model = read_model(opened, _mapping(brief), statements, choice)
     if not model.beams and not model.out_of_scope:
-        raise ModelError(f"{path}: holds no beam (IfcBeam); export the model with its beams")
-    return Read(opened, model)
+        raise ModelError(
+            f"{path}: holds no beam (IfcBeam); export the model with its beams, or name what they"
+            " are under [scope] of the brief"
+        )
+    return Read(opened, model, choice.reached)
+
+
+def _choice(opened: OpenedModel, brief: Brief | None) -> Choice:
+    if brief is None:
+        return NO_CHOICE
+    try:
+        scope = brief.scope
+        return choose(opened, scope.also, scope.leave_out, slabs=brief.asks_for_slabs)
+    except BriefError as error:
+        raise BriefError(f"{brief.file_name}: {error}") from None
 
 
 def _mapping(brief: Brief | None) -> dict[str, str]:

@@ -265,7 +265,7 @@ def sheet_maker(
             loads=(*_self_weight(arisen, subject, row), *subject.loads),
             bars=subject.bars,
             stirrups=subject.stirrups,
-            section=outline_of(subject.beam.runs, section_x),
+            section=outline_of(subject.runs, section_x),
             section_x=section_x,
             checks=checks,
             diagrams=_diagrams(batch, row, rating),

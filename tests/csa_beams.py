@@ -70,6 +70,7 @@ def rows(
         stirrup_spacing=np.full(n, spacing if stirrup_area != 0.0 else np.inf),
         stirrup_yield=np.full(n, stirrup_yield),
         inside=(x >= faces[0] - 1e-6) & (x <= faces[1] + 1e-6),
+        shear_loss=np.zeros(n),
     )
     return members, stations
 

@@ -234,6 +234,16 @@ class Building:
         )
         return definition
 
+    def void(self, product: Any, *items: Any, kind: str = "IfcOpeningElement", **named: Any) -> Any:
+        """An opening in a product, placed within it."""
+        named.setdefault("placement", self.placement(within=product.ObjectPlacement))
+        opening = self.member(kind, *items, **named)
+        self.contained.pop()
+        self.root(
+            "IfcRelVoidsElement", RelatingBuildingElement=product, RelatedOpeningElement=opening
+        )
+        return opening
+
     def give_parts(self, whole: Any, *parts: Any) -> None:
         self.root("IfcRelAggregates", RelatingObject=whole, RelatedObjects=list(parts))
 

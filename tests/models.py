@@ -95,6 +95,27 @@ class MadeBeam:
     class_name: str = "IfcBeam"
     body: Callable[[Bodies], list[Any]] | None = None
     """Draws the items of its body; None extrudes the outline"""
+    openings: tuple[Hole, ...] = ()
+
+
+@dataclass(frozen=True)
+class Hole:
+    """An opening: a box in the beam's axes."""
+
+    x: tuple[float, float]
+    y: tuple[float, float]
+    z: tuple[float, float]
+
+
+@dataclass(frozen=True)
+class MadeSlab:
+    """A level slab in the building's axes."""
+
+    ring: Outline
+    bottom: float
+    thickness: float
+    name: str = "S-1"
+    holes: tuple[Outline, ...] = ()
 
 
 @dataclass(frozen=True)
@@ -279,6 +300,8 @@ class Model:
             items = self._drawn(beam, beam.body, inner)
         element = self._element(beam.class_name, beam.mark, placed, self._shape(*items))
         element.Tag = f"tag of {beam.mark}"
+        for number, hole in enumerate(beam.openings):
+            self._opening(beam, hole, element, inner, f"hole {number} of {beam.mark}")
         self._notation(beam, element)
         made = [bar for layer in beam.layers for bar in self._layer(beam, layer, element, inner)]
         made += [bar for ties in beam.ties for bar in self._ties(beam, ties, element, inner)]
@@ -310,6 +333,38 @@ class Model:
         origin = self._point(*at((0.0, 0.0, 0.0)))
         named = dict(zip(("Axis1", "Axis2", "Axis3"), axes, strict=True))
         return [bodies.mapped(item, LocalOrigin=origin, **named) for item in draw(bodies)]
+
+    def add_slab(self, slab: MadeSlab) -> None:
+        frame, sign = Frame((0.0, 0.0, slab.bottom)), -1.0 if self.setting.mirrored else 1.0
+        placed, inner = self._frames(frame)
+        ring = tuple((sign * x, y) for x, y in slab.ring)
+        solid = self._extrusion(ring, inner, True, slab.thickness)
+        shape = self._shape(solid)
+        element = self._element("IfcSlab", slab.name, placed, shape)
+        for number, hole in enumerate(slab.holes):
+            ring = tuple((sign * x, y) for x, y in hole)
+            below = Frame(inner.point((0.0, 0.0, -50.0)), inner.angle)
+            body = self._extrusion(ring, below, True, slab.thickness + 100.0)
+            self._void(element, body, f"hole {number} of {slab.name}")
+
+    def _opening(self, beam: MadeBeam, hole: Hole, host: Any, inner: Frame, name: str) -> None:
+        (y0, y1), (z0, z1) = (tuple(map(self._y, hole.y)), hole.z)
+        ring = ((y0, z0), (y1, z0), (y1, z1), (y0, z1))
+        start = min(self._x(beam, x) for x in hole.x)
+        frame = Frame(inner.point((start, 0.0, 0.0)), inner.angle)
+        solid = self._extrusion(ring, frame, False, hole.x[1] - hole.x[0])
+        self._void(host, solid, name)
+
+    def _void(self, host: Any, solid: Any, name: str) -> None:
+        placement = self.make("IfcLocalPlacement", host.ObjectPlacement, self._axes(Frame()))
+        opening = self.rooted(
+            "IfcOpeningElement", name, Name=name, ObjectPlacement=placement,
+            Representation=self._shape(solid),
+        )  # fmt: skip
+        self.rooted(
+            "IfcRelVoidsElement", name, RelatingBuildingElement=host,
+            RelatedOpeningElement=opening,
+        )  # fmt: skip
 
     def _y(self, y: float) -> float:
         return -y if self.setting.mirrored != self.setting.from_end else y
@@ -423,11 +478,15 @@ class Model:
         )  # fmt: skip
 
 
-def model(*beams: MadeBeam, setting: Setting | None = None) -> bytes:
+def model(
+    *beams: MadeBeam, setting: Setting | None = None, slabs: Sequence[MadeSlab] = ()
+) -> bytes:
     """The bytes of an IFC model of the beams."""
     made = Model(setting or Setting())
     for beam in beams:
         made.add_beam(beam)
+    for slab in slabs:
+        made.add_slab(slab)
     return made.finish()
 
 

@@ -227,6 +227,25 @@ def test_other_entries_are_read(load):
     assert (material.concrete_strength, material.density, material.cover) == (45.0, 2400.0, None)
 
 
+@pytest.mark.parametrize(
+    ("written", "wanted"), [("true", "level"), ("false", "none"), ('"on top"', "on top")]
+)
+def test_slabs_as_flanges_by_default_and_by_beam(load, written, wanted):
+    brief = load(BASIS + f'[defaults]\nslab_flanges = true\n[[beams]]\nbeams = ["B"]\n'
+                 f"slab_flange = {written}\n")  # fmt: skip
+    assert brief.defaults.slab_flanges
+    assert brief.beams[0].slab_flange == wanted
+    assert not load(BASIS).defaults.slab_flanges
+
+
+@pytest.mark.parametrize(
+    "written", ['[defaults]\nslab_flanges = "yes"', '[[beams]]\nbeams = ["B"]\nslab_flange = "top"']
+)
+def test_slabs_as_flanges_are_asked_for_in_so_many_words(load, written):
+    with pytest.raises(BriefError, match="slab_flange"):
+        load(f"{BASIS}{written}\n")
+
+
 def test_what_is_silent_stays_silent(load):
     brief = load(BASIS)
     assert brief.basis.shear_method is None
@@ -434,6 +453,7 @@ FAULTS = [
     (BASIS + '[[beams]]\nbeams = ["B"]\nspan = "-6 m"\n', "beams[1].span (line 6): '-6 m' is not"),
     (BASIS + '[[beams]]\nbeams = ["B"]\nspan = "0 m"\n', "is not plausible: 100 mm to 200 m"),
     (BASIS + '[[beams]]\nbeams = ["B"]\nunloaded = "yes"\n', "'yes' must be true or false"),
+    (BASIS + '[[beams]]\nbeams = ["B"]\nslab_flange = "top"\n', 'must be true, false or "on top"'),
     (BASIS + '[[materials]]\nbeams = ["B"]\n', "materials[1] (line 4): states nothing"),
     (BASIS + '[[materials]]\nbeams = ["B"]\ndensity = "24 kN/m3"\n', "a density is needed"),
     # combinations

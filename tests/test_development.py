@@ -220,6 +220,7 @@ def prepared_at(members: Members, x: np.ndarray) -> Prepared:
         stirrup_spacing=np.full(len(x), np.inf),
         stirrup_yield=np.full(len(x), 400.0),
         inside=np.ones(len(x), dtype=np.bool_),
+        shear_loss=np.zeros(len(x)),
     )
     return prepare(members, stations, Options("general"))
 

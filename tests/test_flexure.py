@@ -17,7 +17,8 @@ from scipy.optimize import brentq
 
 from ifccheck.mechanics.arrays import ANCHOR_FULL, Demand, Members, Stations
 from ifccheck.mechanics.flexure import FlexuralStrength, flexural_strength
-from ifccheck.mechanics.width_profile import overhangs, pack_strips, strips_of
+from ifccheck.mechanics.overhangs import overhangs
+from ifccheck.mechanics.width_profile import pack_strips, strips_of
 from ifccheck.standards.contract import Options
 from ifccheck.standards.csa_a23_3_14 import materials
 from ifccheck.standards.csa_a23_3_14.flange import effective_overhangs
@@ -87,6 +88,7 @@ def prepared_of(sections: list[Given], span: float = 1e6) -> Prepared:
         stirrup_spacing=np.full(count, np.inf),
         stirrup_yield=np.full(count, 400.0),
         inside=np.ones(count, dtype=np.bool_),
+        shear_loss=np.zeros(count),
     )
     return prepare(members, stations, Options("general"))
 

@@ -173,6 +173,12 @@ def test_beam_names_that_only_sound_like_something_else(name: str) -> None:
     assert families_named(name) == frozenset()
 
 
+@pytest.mark.parametrize("name", ["Wall beam 3", "Wandbalken", "Lintel over wall 2", "Beam anchor"])
+def test_beams_named_after_something_else_are_beams(name: str) -> None:
+    assert reasons(only_beam(read_one("Concrete C30/37", Name=name))) == ""
+    assert "material unknown" in reasons(only_beam(read_one("", Name=name)))
+
+
 # what a beam is
 
 
@@ -189,6 +195,15 @@ def test_beam_names_that_only_sound_like_something_else(name: str) -> None:
         ({"Name": "LAGER"}, "Diverse", "bearing"),
         ({"Name": "strip"}, "Isolatie", "insulation"),
         ({"Name": "B3"}, "B500B", "steel"),
+        ({"Name": "Anchor A12"}, "", "anchor"),
+        ({"Name": "Ankerplatte 7"}, "Default", "anchor"),
+        ({"Name": "Hijsanker"}, "STEEL/St52-3", "steel"),
+        ({"Name": "Pipe sleeve DN100"}, "", "sleeve"),
+        ({"Name": "kopel sparing"}, "Undefined", "sleeve"),
+        ({"Name": "Padstone 3"}, "", "pad"),
+        ({"Name": "X1", "ObjectType": "Shim pad 5 mm"}, "", "pad"),
+        ({"Name": "Wall W-3"}, "Concrete C30/37", "wall"),
+        ({"Name": "Wand 12"}, "", "wall"),
     ],
 )
 def test_left_out_on_positive_evidence(named: dict[str, str], material: str, reason: str) -> None:
@@ -207,6 +222,8 @@ def test_left_out_on_positive_evidence(named: dict[str, str], material: str, rea
         ({"Name": "HE220B encased"}, "Concrete C30/37", "material contradictory: concrete"),
         ({"Name": "footing tie beam"}, "Concrete C30/37", "named both a footing and a beam"),
         ({"Name": "bearing 2"}, "Concrete C30/37", "of concrete, yet named a bearing"),
+        ({"Name": "Anchor block 2"}, "Concrete C30/37", "of concrete, yet named an anchor"),
+        ({"Name": "Pad 4"}, "Concrete C30/37", "of concrete, yet named a pad"),
     ],
 )
 def test_doubtful_beams_stay_in_scope_with_the_reason(

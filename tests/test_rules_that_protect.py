@@ -731,7 +731,7 @@ def faceted(model: str) -> str:
 
 
 BODIES: Mapping[str, tuple[str, str]] = {
-    "opening": (opening(SOUND), "1 opening not read yet"),
+    "opening": (opening(SOUND), "opening cannot be read"),
     "tendon": (tendon(SOUND), "prestressed"),
     "Brep without faces": (faceted(SOUND), "body has no faces"),
 }

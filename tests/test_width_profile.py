@@ -12,6 +12,7 @@ from hypothesis import given
 from hypothesis import strategies as st
 from shapely.geometry import LineString, Polygon, box
 
+from ifccheck.mechanics.overhangs import overhangs
 from ifccheck.mechanics.width_profile import (
     area_below,
     bottom_of,
@@ -21,7 +22,6 @@ from ifccheck.mechanics.width_profile import (
     from_soffit,
     greatest_width,
     least_width,
-    overhangs,
     pack_strips,
     second_moment_below,
     strips_of,

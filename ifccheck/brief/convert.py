@@ -12,7 +12,7 @@ from ifccheck.brief.combination_entries import combination_entries
 from ifccheck.brief.entries import beam_entry, material_entry, support_entry
 from ifccheck.brief.faults import FaultError, Source
 from ifccheck.brief.load_entries import load_entry
-from ifccheck.brief.model import Basis, Brief, Defaults, ReinforcementField
+from ifccheck.brief.model import Basis, Brief, Defaults, ReinforcementField, Scope
 from ifccheck.brief.places import did_you_mean, shown
 
 DEFAULT_SOURCES: tuple[SourceName, ...] = ("schedule", "bars", "sections", "properties")
@@ -38,6 +38,19 @@ def to_brief(table: schema.BriefTable, path: Path, source: Source) -> Brief:
         beams=tuple(beam_entry(i, t) for i, t in enumerate(table.beams)),
         materials=tuple(material_entry(i, t) for i, t in enumerate(table.materials)),
         combinations=combination_entries(table.combinations, cases),
+        scope=_scope(table.scope),
+    )
+
+
+def _scope(table: schema.ScopeTable) -> Scope:
+    for key, queries in (("also", table.also), ("leave_out", table.leave_out)):
+        for query in queries:
+            if not query.strip():
+                raise FaultError(("scope", key), "holds an empty query")
+    return Scope(
+        also={f"scope.also[{n}]": query for n, query in enumerate(table.also, 1)},
+        leave_out={f"scope.leave_out[{n}]": query for n, query in enumerate(table.leave_out, 1)},
+        optional=table.optional,
     )
 
 

@@ -6,7 +6,12 @@ from typing import TypedDict
 
 from ifccheck.brief import schema
 from ifccheck.brief.faults import FaultError
-from ifccheck.brief.model import BeamEntry, MaterialEntry, Selection, SupportEntry
+from ifccheck.brief.model import (
+    BeamEntry,
+    MaterialEntry,
+    Selection,
+    SupportEntry,
+)
 from ifccheck.brief.places import Path, shown
 from ifccheck.brief.supports import cannot_stand
 
@@ -64,7 +69,7 @@ def support_entry(index: int, table: schema.SupportTable) -> SupportEntry:
 def beam_entry(index: int, table: schema.BeamTable) -> BeamEntry:
     """An entry of ``[[beams]]``."""
     path: Path = ("beams", index)
-    keys = ("span", "unloaded", "loads_complete", "torsion")
+    keys = ("span", "unloaded", "loads_complete", "torsion", "slab_flange")
     _states_something(path, table, keys)
     return BeamEntry(
         **head(path, table),
@@ -72,6 +77,7 @@ def beam_entry(index: int, table: schema.BeamTable) -> BeamEntry:
         unloaded=table.unloaded,
         loads_complete=table.loads_complete,
         torsion=table.torsion,
+        slab_flange=table.slab_flange,
     )
 
 

@@ -23,6 +23,11 @@ ReinforcementField = Literal[
 ]
 
 
+SlabFlange = Literal["none", "level", "on top"]
+"""Whether slab that is modelled apart counts as a flange: none; what is level with the beam; also
+what lies on its top."""
+
+
 @dataclass(frozen=True, slots=True)
 class Selection:
     """Which beams an entry speaks of: marks, or an element query; exactly one is given."""
@@ -100,6 +105,7 @@ class BeamEntry:
     loads_complete: bool | None
     torsion: bool | None
     """True where loads act beside the web or the beam must twist to stand."""
+    slab_flange: SlabFlange | None
 
 
 @dataclass(frozen=True, slots=True)
@@ -153,6 +159,22 @@ class Defaults:
     cover: float | None = None
     aggregate_size: float | None = None
     supports: tuple[SupportKind, SupportKind] | None = None
+    slab_flanges: bool = False
+    """Slabs that beams are cast with count as their flanges."""
+
+
+@dataclass(frozen=True, slots=True)
+class Scope:
+    """Element queries by their place: what is a beam beside what is one by class, and what is
+    left out."""
+
+    also: Mapping[str, str]
+    leave_out: Mapping[str, str]
+    optional: bool
+    """True where the queries may reach nothing."""
+
+
+NO_SCOPE = Scope({}, {}, False)
 
 
 @dataclass(frozen=True, slots=True)
@@ -178,6 +200,14 @@ class Brief:
     beams: tuple[BeamEntry, ...] = ()
     materials: tuple[MaterialEntry, ...] = ()
     combinations: tuple[CombinationEntry, ...] = ()
+    scope: Scope = NO_SCOPE
+
+    @property
+    def asks_for_slabs(self) -> bool:
+        """Slab may count as a flange of some beam."""
+        return self.defaults.slab_flanges or any(
+            entry.slab_flange not in (None, "none") for entry in self.beams
+        )
 
     def entries(self) -> Iterator[Entry]:
         """Every entry with a selection, in the order of the brief's tables."""

@@ -14,7 +14,7 @@ from pydantic import (
 )
 
 from ifccheck.beam import CombinationKind, Face, Nature, SourceName, SupportKind
-from ifccheck.brief.model import Position
+from ifccheck.brief.model import Position, SlabFlange
 from ifccheck.brief.quantities import (
     CONCRETE_STRENGTH,
     COVER,
@@ -74,6 +74,15 @@ def _plain_factor(value: object) -> float:
     return float(value)
 
 
+def _slab_flange(value: object) -> SlabFlange:
+    """Which slab counts as a flange: none, what is level with the beam, also what is on top."""
+    if value == "on top":
+        return "on top"
+    if not isinstance(value, bool):
+        raise ValueError('must be true, false or "on top"')
+    return "level" if value else "none"
+
+
 Name = Annotated[
     str, StringConstraints(min_length=1, max_length=80, pattern=r"^[^\x00-\x1f\x7f]*$")
 ]
@@ -110,6 +119,7 @@ class DefaultsTable(MaterialsTable):
     """``[defaults]``"""
 
     supports: list[SupportKind] | None = Field(default=None, min_length=2, max_length=2)
+    slab_flanges: bool = False
 
 
 class PropertiesTable(Table):
@@ -142,11 +152,22 @@ class CaseTable(Table):
     removable: bool = False
 
 
+Query = Annotated[str, StringConstraints(min_length=1, max_length=2000)]
+
+
+class ScopeTable(Table):
+    """``[scope]``"""
+
+    also: list[Query] = Field(default_factory=list)
+    leave_out: list[Query] = Field(default_factory=list)
+    optional: bool = False
+
+
 class SelectingTable(Table):
     """What every entry with a selection has."""
 
     beams: list[Name] | None = Field(default=None, min_length=1)
-    where: Annotated[str, StringConstraints(min_length=1, max_length=2000)] | None = None
+    where: Query | None = None
     optional: bool = False
 
 
@@ -189,6 +210,7 @@ class BeamTable(SelectingTable):
     unloaded: bool | None = None
     loads_complete: bool | None = None
     torsion: bool | None = None
+    slab_flange: Annotated[SlabFlange, PlainValidator(_slab_flange)] | None = None
 
 
 class MaterialTable(MaterialsTable, SelectingTable):
@@ -209,6 +231,7 @@ class BriefTable(Table):
     """The whole file."""
 
     basis: BasisTable
+    scope: ScopeTable = Field(default_factory=ScopeTable)
     defaults: DefaultsTable = Field(default_factory=DefaultsTable)
     reinforcement: ReinforcementTable = Field(default_factory=ReinforcementTable)
     cases: dict[Name, CaseTable] = Field(default_factory=dict)
@@ -221,6 +244,7 @@ class BriefTable(Table):
 
 _TABLES: dict[str, type[Table]] = {
     "basis": BasisTable,
+    "scope": ScopeTable,
     "defaults": DefaultsTable,
     "reinforcement": ReinforcementTable,
     "cases": CaseTable,

@@ -38,6 +38,20 @@ def join(brief: Brief, rows: Sequence[ScheduleRow], found: Found) -> dict[str, t
     }
 
 
+def check_scope(brief: Brief, reached: Sequence[Mapping[str, int]]) -> None:
+    """Raise BriefError for a query of the scope that reaches nothing in any model of the run.
+
+    ``reached`` is how many members each query reaches in each model, by its place.
+    """
+    for place, query in (*brief.scope.also.items(), *brief.scope.leave_out.items()):
+        if not brief.scope.optional and not any(of_model[place] for of_model in reached):
+            key = place.partition("[")[0]
+            raise BriefError(
+                f"{brief.at(place, brief.lines.get(key))}: {clipped(query, 120)} reaches no member:"
+                " correct it, or write optional = true under [scope]"
+            )
+
+
 def check_reached(brief: Brief, found: Sequence[Found]) -> None:
     """Raise BriefError for a mark or query that reaches no beam in any model of the run.
 

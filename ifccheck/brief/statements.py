@@ -8,7 +8,7 @@ from dataclasses import dataclass, replace
 
 from ifccheck.beam import Beam, Given, Reason, Remark, Support
 from ifccheck.brief.merging import Matches, Said, merge
-from ifccheck.brief.model import BeamEntry, Brief, MaterialEntry
+from ifccheck.brief.model import BeamEntry, Brief, MaterialEntry, SlabFlange
 from ifccheck.units import ShownKind, show
 
 MATERIAL_KINDS: Mapping[str, ShownKind] = {
@@ -35,6 +35,8 @@ class BeamStatement:
     """What rests on the beam is in the loads given."""
     torsion: bool = False
     """Loads act beside the web, or the beam must twist to stand."""
+    slab_flange: SlabFlange | None = None
+    """None where the default holds."""
     remarks: tuple[Remark, ...] = ()
 
 
@@ -62,6 +64,14 @@ def statements(brief: Brief, matches: Matches) -> dict[str, BeamStatement]:
         )
         for key in (*stated, *(key for key in eccentric if key not in stated))
     }
+
+
+def slab_flange(brief: Brief, statement: BeamStatement) -> tuple[SlabFlange, str]:
+    """Return what slab counts as a flange of a beam, and where the brief says so."""
+    if statement.slab_flange is not None:
+        return statement.slab_flange, "brief, [[beams]]"
+    wanted: SlabFlange = "level" if brief.defaults.slab_flanges else "none"
+    return wanted, "brief, defaults.slab_flanges"
 
 
 def span_reason(
@@ -100,6 +110,8 @@ def _say_of_beam(entry: BeamEntry) -> dict[str, Said]:
         for name in ("unloaded", "loads_complete", "torsion")
         if (value := getattr(entry, name)) is not None
     }
+    if entry.slab_flange is not None:
+        said["slab_flange"] = Said(entry.slab_flange, entry.slab_flange, entry.place)
     if entry.span is not None:
         said["span"] = Said(entry.span, show(entry.span, "length"), entry.place)
     return said
@@ -125,6 +137,7 @@ def _statement(
         unloaded=bool(unloaded),
         loads_complete="loads_complete" in said and said["loads_complete"].value,
         torsion=bool(torsion or eccentric),
+        slab_flange=said["slab_flange"].value if "slab_flange" in said else None,
         remarks=tuple(remarks),
     )
 

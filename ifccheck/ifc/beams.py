@@ -7,12 +7,13 @@ from collections.abc import Callable
 from dataclasses import dataclass, field, replace
 from functools import lru_cache
 
-from ifccheck.beam import Beam, Box, OutOfScope, Reason, Remark, Run
+from ifccheck.beam import Beam, Box, Opening, OutOfScope, Reason, Remark, Run
 from ifccheck.ifc.concretes import Concretes
 from ifccheck.ifc.context import Context
 from ifccheck.ifc.entity import ILL_TYPED, UnreadableError, text
 from ifccheck.ifc.materials import MaterialDefinition, Materials
 from ifccheck.ifc.plain_bodies import PlainBodies
+from ifccheck.ifc.precast import told_precast
 from ifccheck.ifc.products import Product
 from ifccheck.ifc.profiles import Profiles
 from ifccheck.ifc.properties import Sets
@@ -23,6 +24,7 @@ from ifccheck.ifc.straight import Straight
 from ifccheck.ifc.strength import GENERAL
 from ifccheck.ifc.tendons import Tendons
 from ifccheck.ifc.vocabulary import speaks_of_lightweight, speaks_of_prestress
+from ifccheck.ifc.voids import VoidReader
 
 GEOMETRY, MATERIALS = "geometry", "materials"
 REINFORCING = ("IfcReinforcingBar", "IfcReinforcingMesh")
@@ -81,6 +83,7 @@ class BeamReader:
         self._storeys = storeys
         self._model = model
         self._tendons = Tendons(context, profiles)
+        self._voids = VoidReader(context, profiles)
         self._materials = Materials(context)
         self._concretes = Concretes(context)
         self._types: dict[int, tuple[str, str]] = {}
@@ -198,7 +201,7 @@ class BeamReader:
         )
 
     def _doubt_kind(self, product: Product, clues: Clues, box: Box | None, doubts: _Doubts) -> None:
-        """Reasons that lie in what the beam is: prestressed, with openings."""
+        """Reasons that lie in what the beam is: prestressed, with projections."""
         step_id = product.step_id
         relations = self._context.relations
         if self._tendons.in_beam(step_id, box):
@@ -207,8 +210,6 @@ class BeamReader:
             doubts.reason("prestressed: a hollow-core unit")
         elif named := _first(speaks_of_prestress, clues):
             doubts.reason(f'prestressed: named so in "{named}"')
-        if openings := relations.openings.get(step_id):
-            doubts.reason(f"{_count(len(openings), 'opening')} not read yet")
         if features := relations.projections.get(step_id):
             doubts.reason(f"{_count(len(features), 'projecting feature')} not read yet")
 
@@ -246,9 +247,24 @@ class BeamReader:
             concrete_density=concrete.least_density,
             greatest_density=concrete.greatest_density,
             cover=concrete.cover,
+            openings=self._openings(step_id, straight, doubts),
+            precast=told_precast(self._context, step_id, clues, sets),
             reasons=tuple(doubts.reasons),
             remarks=tuple(doubts.remarks),
         )
+
+    def _openings(
+        self, step_id: int, straight: Straight | None, doubts: _Doubts
+    ) -> tuple[Opening, ...]:
+        """What openings take off a beam; one whose extent cannot be told is a reason."""
+        if straight is None:
+            return ()
+        found = self._voids.of(step_id, straight.axis, _runs(straight))
+        for why in found.unread:
+            doubts.reason(f"opening cannot be read: {why}")
+        for origin in found.missed:
+            doubts.remark(GEOMETRY, f"opening {origin} does not meet the beam: nothing taken off")
+        return tuple(found.openings)
 
 
 def _told_by_properties(sets: Sets) -> tuple[tuple[str, str], ...]:

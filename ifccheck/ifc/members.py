@@ -147,7 +147,7 @@ class MemberReader:
         if self._is_any(product, ("IfcElementAssembly",)):
             return []  # its parts are members by themselves
         parts = self._context.relations.descendants(product.step_id)
-        entities = [part for part in map(self._context.file.by_id, parts) if _is_solid_part(part)]
+        entities = [part for part in map(self._context.file.by_id, parts) if is_solid_part(part)]
         found = [self._boxes.of(part) for part in entities]
         return [box for box in found if box is not None]
 
@@ -180,7 +180,8 @@ def _use_doubt(product: Product) -> str:
     return f"it is named as {min(weak)}" if weak and CONCRETE not in families else ""
 
 
-def _is_solid_part(part: Entity) -> bool:
+def is_solid_part(part: Entity) -> bool:
+    """Tell whether a part is a body of its whole, and no bar, fastener or opening."""
     return part.is_a("IfcElement") and not any(part.is_a(kind) for kind in NOT_SOLID)
 
 

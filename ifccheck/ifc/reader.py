@@ -7,7 +7,7 @@ from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import fields, replace
 from operator import attrgetter
 
-from ifccheck.beam import Beam, Box, Model, OutOfScope, Reinforcement, Remark
+from ifccheck.beam import Beam, Box, Model, Reinforcement, Remark
 from ifccheck.errors import ModelError
 from ifccheck.ifc.beams import BeamReader, Identity
 from ifccheck.ifc.context import BeamFrame, Context, make_context
@@ -20,28 +20,36 @@ from ifccheck.ifc.plain_bodies import PlainBodies
 from ifccheck.ifc.products import Product, read_products
 from ifccheck.ifc.profiles import Profiles
 from ifccheck.ifc.reinforcement import read_reinforcement
+from ifccheck.ifc.scoping import NO_CHOICE, Choice, candidates, parted
+from ifccheck.ifc.slabs import SlabReader
 from ifccheck.ifc.step_table import StepTable
 from ifccheck.ifc.storeys import Storeys
 from ifccheck.ifc.strength import GENERAL, OF_MATERIAL
 
 STAGE = "reading"
+BEAMS = ("IfcBeam",)
 
 _FIELDS = [field.name for field in fields(Beam)]
 _VALUES, _PLACE = attrgetter(*_FIELDS), _FIELDS.index("reinforcement")
 
 
 def read_model(
-    opened: OpenedModel, mapping: Mapping[str, str], statements: StepTable | None = None
+    opened: OpenedModel,
+    mapping: Mapping[str, str],
+    statements: StepTable | None = None,
+    choice: Choice = NO_CHOICE,
 ) -> Model:
     """Return all that a model says of its beams.
 
     ``mapping`` names the properties that hold reinforcement: field = "Set.Property".
-    ``statements`` of the same file let the plainest bars be read many at once.
+    ``statements`` of the same file let the plainest bars be read many at once. ``choice`` is what
+    the brief takes in beside the beams by class, and what it leaves out; slabs are read only where
+    it asks for them.
     Raises ModelError where the model has no unit of length to measure its beams by, or breaks
     its schema where that is not the matter of a single beam.
     """
     try:
-        return _read(opened, mapping, statements)
+        return _read(opened, mapping, statements, choice)
     except ILL_TYPED as error:
         raise ModelError(
             f"{opened.file_name}: an instance does not hold what its class asks ({error}); "
@@ -49,10 +57,16 @@ def read_model(
         ) from error
 
 
-def _read(opened: OpenedModel, mapping: Mapping[str, str], statements: StepTable | None) -> Model:
+def _read(
+    opened: OpenedModel,
+    mapping: Mapping[str, str],
+    statements: StepTable | None,
+    choice: Choice,
+) -> Model:
     context = make_context(opened.file, opened.schema, statements)
     products = read_products(context, members_of(opened.file))
-    own = [one for one in products if context.classes.is_any(one.ifc_class, ("IfcBeam",))]
+    beams_by_class = [one for one in products if context.classes.is_any(one.ifc_class, BEAMS)]
+    own = candidates(context, products, beams_by_class, choice)
     if own and "length" not in context.units.declared:
         raise ModelError(
             f"{opened.file_name}: declares no unit of length, so no beam can be measured; "
@@ -64,7 +78,7 @@ def _read(opened: OpenedModel, mapping: Mapping[str, str], statements: StepTable
     asked = {GENERAL, OF_MATERIAL, *sets_described(mapping)}
     context.properties.find((product.step_id for product in own), asked)
     beams: list[Beam] = []
-    left_out: list[OutOfScope] = []
+    own, left_out = parted(context, storeys, own, choice)
     known: dict[int, Box] = {}
     for product, identity in _identified(own):
         found = reader.read(product, identity)
@@ -86,6 +100,7 @@ def _read(opened: OpenedModel, mapping: Mapping[str, str], statements: StepTable
         storeys=storeys.all,
         remarks=(*opened.remarks, *_repeats(own), *reader.remarks, *members.remarks),
         unmeasured=members.unmeasured,
+        slabs=SlabReader(context, profiles).read() if beams and choice.slabs else (),
     )
 
 

@@ -21,7 +21,9 @@ from ifccheck.ifc.vocabulary import (
 Evidence = tuple[str, str]
 """A material or use, and where it is read."""
 
-USES = ("footing", "bearing")
+BUILT_IN = ("anchor", "sleeve", "pad")
+"""Uses of what is built into a building and spans nothing"""
+USES = ("footing", "bearing", "wall", *BUILT_IN)
 
 
 @dataclass(frozen=True, slots=True)
@@ -81,11 +83,14 @@ def _judged(
     used = _use(named + stated, names, concrete)
     if used is not None:
         return used
-    return _by_material(
+    found = _by_material(
         [one for one in stated if one[0] not in USES],
         [one for one in named if one[0] not in USES],
         definition,
     )
+    if found.left_out is not None:
+        return found
+    return _other_use(named, names, concrete) or found
 
 
 def _use(evidence: Iterable[Evidence], names: Iterable[str], concrete: bool) -> Scope | None:
@@ -98,6 +103,22 @@ def _use(evidence: Iterable[Evidence], names: Iterable[str], concrete: bool) -> 
         if use == "bearing" and not BEAM_WORDS.search(where):
             if concrete:
                 return Scope(doubt=f"of concrete, yet named a bearing: {where}")
+            return Scope(left_out=(use, where))
+    return None
+
+
+def _other_use(evidence: Iterable[Evidence], names: Iterable[str], concrete: bool) -> Scope | None:
+    """What is named a wall, or something that is built into a building, and no beam.
+
+    A wall beam is a beam, and a beam may be named after the wall that it lies on.
+    """
+    if any(BEAM_WORDS.search(name) for name in names):
+        return None
+    for use, where in evidence:
+        if use in BUILT_IN and concrete:
+            article = "an" if use == "anchor" else "a"
+            return Scope(doubt=f"of concrete, yet named {article} {use}: {where}")
+        if use == "wall" or use in BUILT_IN:
             return Scope(left_out=(use, where))
     return None
 

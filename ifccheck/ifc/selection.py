@@ -105,6 +105,37 @@ def _of_class(opened: OpenedModel, beams: Sequence[Beam], name: str) -> set[str]
 
 
 def _selected(opened: OpenedModel, beams: Sequence[Beam], query: str, place: str) -> set[str]:
+    if not beams:
+        _require_understood(opened, query, place)
+        return set()  # without candidates ifcopenshell would search the whole model
+    keys = {beam.step_id: beam.key for beam in beams}
+    candidates = {opened.file.by_id(step_id) for step_id in keys}
+    found = elements_of(opened, query, place, candidates)
+    return {keys[entity.id()] for entity in found if entity.id() in keys}
+
+
+def elements_of(
+    opened: OpenedModel, query: str, place: str, candidates: set[Any] | None = None
+) -> list[Any]:
+    """Return what an element query finds among the candidates, or in the whole model.
+
+    Raises BriefError, naming the place, where it cannot be understood or answered.
+    """
+    from ifcopenshell.util import selector
+    from lark.exceptions import LarkError
+
+    _require_understood(opened, query, place)
+    try:
+        found = selector.filter_elements(opened.file, query, elements=candidates)
+    except (LarkError, re.error) as error:
+        detail = str(error.__context__ or error).splitlines()[0]
+        raise BriefError(
+            f"{place} cannot be answered in {opened.file_name} ({detail}): correct it"
+        ) from error
+    return sorted(found, key=lambda entity: entity.id())
+
+
+def _require_understood(opened: OpenedModel, query: str, place: str) -> None:
     from ifcopenshell.util import selector
     from lark.exceptions import LarkError
 
@@ -118,18 +149,6 @@ def _selected(opened: OpenedModel, beams: Sequence[Beam], query: str, place: str
             ' IfcBeam, location="Level 1"'
         ) from error
     _require_known_classes(opened, _classes(tree), place)
-    if not beams:
-        return set()  # without candidates ifcopenshell would search the whole model
-    keys = {beam.step_id: beam.key for beam in beams}
-    candidates = {opened.file.by_id(step_id) for step_id in keys}
-    try:
-        found = selector.filter_elements(opened.file, query, elements=candidates)
-    except (LarkError, re.error) as error:
-        detail = str(error.__context__ or error).splitlines()[0]
-        raise BriefError(
-            f"{place} cannot be answered in {opened.file_name} ({detail}): correct it"
-        ) from error
-    return {keys[entity.id()] for entity in found if entity.id() in keys}
 
 
 def _require_known_classes(opened: OpenedModel, names: Iterable[str], place: str) -> None:

@@ -60,6 +60,15 @@ STEMS: Mapping[str, tuple[str, ...]] = {
         "opleggingsblok", "oplegblok", "oplegrubber", "appareil d'appui", "appareil d’appui",
         "apoyo elastomérico", "apoyo de neopreno",
     ),
+    "anchor": (
+        "anchor plate", "anchor bolt", "anchor rail", "lifting anchor", "cast-in channel",
+        "ankerplatte", "ankerschiene", "transportanker", "ankerplaat", "hijsanker", "boutanker",
+        "slotanker", "platine d'ancrage", "innstøpningsgods",
+    ),
+    "sleeve": (
+        "pipe sleeve", "cast-in sleeve", "hüllrohr", "leerrohr", "mantelbuis", "fourreau",
+    ),
+    "pad": ("padstone", "bearing plate", "oplegplaat", "onderlegplaat", "lagerplatte"),
     "footing": (
         "footing", "pile cap", "pilecap", "streifenfundament", "einzelfundament",
         "köcherfundament", "fundamentplatte", "funderingsvoet", "funderingsstrook",
@@ -75,6 +84,10 @@ STEMS: Mapping[str, tuple[str, ...]] = {
 
 USE_WORDS: Mapping[str, tuple[str, ...]] = {
     "bearing": ("bearing", "bearings", "lager", "oplegging", "appui", "apoyo"),
+    "anchor": ("anchor", "anchors", "anker", "ankers", "ancrage", "anclaje"),
+    "sleeve": ("sleeve", "sleeves", "sparing", "sparingen", "hülse", "manchon", "utsparing"),
+    "pad": ("pad", "pads", "shim", "shims", "vulplaat"),
+    "wall": ("wall", "walls", "wand", "wände", "muur", "vegg", "mur", "pared", "parete"),
     "footing": ("fundament", "fundamente", "fundering", "poer", "poeren", "semelle", "semelles",
                 "sokkel"),
 }  # fmt: skip

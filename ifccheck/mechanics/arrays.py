@@ -92,6 +92,9 @@ class Stations:
     """[MPa] (N)"""
     inside: Bools
     """Between the faces of the supports: where shear is checked (N)"""
+    shear_loss: Floats
+    """Depth that openings take away from what carries shear [mm] (N); nan where the section
+    cannot be rated in shear"""
     chords: Chords | None = None
     """None where no chord is inclined"""
 

@@ -44,5 +44,5 @@ def bounds(rings: Sequence[Ring]) -> tuple[float, float, float, float]:
     >>> bounds([[(-100.0, 0.0), (100.0, 0.0), (0.0, 300.0)]])
     (-100.0, 100.0, 0.0, 300.0)
     """
-    ys, zs = zip(*rings[0], strict=True)
+    ys, zs = zip(*(point for ring in rings for point in ring), strict=True)
     return min(ys), max(ys), min(zs), max(zs)

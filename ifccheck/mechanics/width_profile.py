@@ -20,9 +20,6 @@ SLIVER = 1e-3
 """Lengths below this [mm] are rounding, not shape: models hold outlines that are out of level by
 as much."""
 
-STEEPEST_LEDGE = 1.0
-"""A side that moves out by more than this per unit of height is a flange's underside."""
-
 
 def strips_of(rings: Sequence[Ring]) -> Floats:
     """Width profile of an outline with voids.
@@ -45,12 +42,23 @@ def strips_of(rings: Sequence[Ring]) -> Floats:
         Where a ring has fewer than three points, a coordinate is not finite, two sides cross
         or the outline has no height.
     """
-    lower, upper = _sides(rings)
-    crossings = [_crossings(z0, z1, lower, upper) for z0, z1 in _levels(lower, upper)]
-    strips = [(z0, z1, _width(ys0), _width(ys1)) for z0, z1, ys0, ys1 in crossings]
+    strips = [(z0, z1, width_of(ys0), width_of(ys1)) for z0, z1, ys0, ys1 in sides_of(rings)]
     if not strips:
         raise ValueError("the outline has no height")
     return np.array(strips, dtype=np.float64)
+
+
+def sides_of(rings: Sequence[Ring]) -> list[tuple[float, float, Floats, Floats]]:
+    """The sides of an outline, stretch by stretch from the soffit up.
+
+    Returns
+    -------
+    list of (z0, z1, ys0, ys1) [mm]
+        The heights between which no side begins or ends, and where the sides are at either,
+        from right to left; none where an opening divides the outline.
+    """
+    lower, upper = _sides(rings)
+    return [_crossings(z0, z1, lower, upper) for z0, z1 in _levels(lower, upper)]
 
 
 def _sides(rings: Sequence[Ring]) -> tuple[Floats, Floats]:
@@ -105,7 +113,7 @@ def _crossings(
     return z0, z1, ys0, ys1
 
 
-def _width(ys: Floats) -> float:
+def width_of(ys: Floats) -> float:
     """Length inside an odd number of rings, from the sorted crossings."""
     return max(float(np.sum(ys[1::2]) - np.sum(ys[0::2])), 0.0)
 
@@ -130,52 +138,6 @@ def pack_strips(profiles: Sequence[Floats]) -> Floats:
     return packed
 
 
-def overhangs(rings: Sequence[Ring]) -> tuple[float, float, float]:
-    """Overhang of a top flange beyond the web on either side, and the flange's thickness.
-
-    Going up from the narrowest place, the flange begins where a side of the outline steps out
-    or moves out flatter than 45 degrees; a battered side is no flange. The thickness is the
-    least height above the highest such underside, so that a tapered flange counts as thin as
-    at its tip.
-
-    Parameters
-    ----------
-    rings : sequence of rings of points (y, z) [mm]
-        Positive y is to the left.
-
-    Returns
-    -------
-    left, right, thickness : float [mm]
-        All 0 where there is no flange.
-    """
-    lower, upper = _sides(rings)
-    crossings = [_crossings(z0, z1, lower, upper) for z0, z1 in _levels(lower, upper)]
-    narrowest = int(np.argmin([_width(ys0) + _width(ys1) for _, _, ys0, ys1 in crossings]))
-    above = crossings[narrowest:]
-    heights = [z for z0, z1, _, _ in above for z in (z0, z1)]
-    left_side = [float(ys[-1]) for _, _, ys0, ys1 in above for ys in (ys0, ys1)]
-    right_side = [-float(ys[0]) for _, _, ys0, ys1 in above for ys in (ys0, ys1)]
-    left, left_underside = _overhang(heights, left_side)
-    right, right_underside = _overhang(heights, right_side)
-    if left == 0.0 and right == 0.0:
-        return 0.0, 0.0, 0.0
-    return left, right, heights[-1] - max(left_underside, right_underside)
-
-
-def _overhang(heights: Sequence[float], reach: Sequence[float]) -> tuple[float, float]:
-    """How far a side reaches beyond its lowest ledge, and the height of its highest ledge."""
-    ledges = [
-        i
-        for i in range(len(heights) - 1)
-        if reach[i + 1] - reach[i]
-        > max(SLIVER, STEEPEST_LEDGE * (heights[i + 1] - heights[i]) + SLIVER)
-    ]
-    if not ledges:
-        return 0.0, -np.inf
-    overhang = max(reach[ledges[0] :]) - reach[ledges[0]]
-    return overhang, heights[ledges[-1] + 1]
-
-
 def top_of(strips: Floats) -> Floats:
     """Height of the top of each section [mm] (n), from strips (n, S, 4)."""
     top: Floats = strips[..., 1].max(axis=-1)
@@ -186,6 +148,13 @@ def bottom_of(strips: Floats) -> Floats:
     """Height of the soffit of each section [mm] (n), from strips (n, S, 4)."""
     bottom: Floats = strips[..., 0].min(axis=-1)
     return bottom
+
+
+def gaps_of(strips: Floats) -> Floats:
+    """Height over which openings divide each section, from side to side [mm] (n)."""
+    z0, z1, w0, w1 = np.moveaxis(strips, -1, 0)
+    gaps: Floats = np.where((w0 <= 0.0) & (w1 <= 0.0), z1 - z0, 0.0).sum(axis=-1)
+    return gaps
 
 
 def flipped(strips: Floats) -> Floats:
@@ -354,8 +323,14 @@ def least_width(strips: Floats, z_low: Floats, z_high: Floats) -> Floats:
     -------
     array (n) [mm]
         0 where no strip lies between the heights; nan where a height is nan.
+
+    Notes
+    -----
+    Where an opening divides the section there is no width to speak of: such strips are passed
+    over.
     """
     ends, reached = _end_widths(strips, z_low, z_high)
+    reached &= (strips[..., 2] > 0.0) | (strips[..., 3] > 0.0)
     least = np.where(reached, ends.min(axis=0), np.inf).min(axis=-1)
     least = np.where(np.isinf(least), 0.0, least)
     return np.where(np.isnan(z_low) | np.isnan(z_high), np.nan, least)

@@ -57,7 +57,7 @@ class _SectionFrame:
     """From the section [mm] to the drawing, the same scale both ways."""
 
     def __init__(self, outline: Outline) -> None:
-        ys, zs = zip(*outline.rings[0], strict=True)
+        ys, zs = zip(*(point for ring in outline.rings for point in ring), strict=True)
         self.width, self.height = max(ys) - min(ys), max(zs) - min(zs)
         self.scale = min(
             SECTION_BOX[0] / max(self.width, 1.0), SECTION_BOX[1] / max(self.height, 1.0)

@@ -21,6 +21,7 @@ from ifccheck.beam import (
     Support,
 )
 from ifccheck.notation import bars_in_a_row
+from ifccheck.publish.openings import drawn_opening
 from ifccheck.publish.quantities import typographic
 from ifccheck.publish.svg import (
     circle,
@@ -136,6 +137,7 @@ def elevation(sheet: Drawable) -> str:
         _body(runs, frame),
         _not_rated(runs, frame),
         *(_stirrup_set(stirrups, frame, foot) for stirrups in sheet.stirrups),
+        *(drawn_opening(opening, sheet.beam, frame) for opening in sheet.beam.openings),
         *(_bar_row(i, row, frame) for i, row in enumerate(bars_in_a_row(sheet.bars))),
         _supports(sheet.span, runs, frame),
         _span_line(sheet.span, length, frame, foot + 58.0),

@@ -16,7 +16,8 @@ nothing); factor ``rated``, ``not limited`` or ``not rated``.
     beams         key, global_id, ordinal, mark, name, tag, type, storey, material, length,
                   span (start, end, supports), verdict, utilisation, governing (name of a limit
                   state), limit_states, rated_cases, reasons, remarks, basis, checked,
-                  not_checked
+                  not_checked; where there are any, openings (start, end along the axis; right,
+                  left across; bottom, top; shape; origin): the box round each
     out_of_scope  global_id, name, storey, reason, evidence
     assumptions   text, beams (empty: the whole run)
     remarks       beam, stage, kind, text

@@ -11,7 +11,7 @@ import math
 from collections.abc import Iterable, Iterator
 from functools import lru_cache
 
-from ifccheck.beam import Beam, Remark, Span, Support
+from ifccheck.beam import Beam, Opening, Remark, Span, Support
 from ifccheck.publish.report import Report
 from ifccheck.rating import BasisItem, LimitStateRating, Rating, SafeLoad
 from ifccheck.tables import factor_state, utilisation_state
@@ -31,6 +31,9 @@ _BEAM = _template(
     "key", "global_id", "ordinal", "mark", "name", "tag", "type", "storey", "material", "length",
     "span", "verdict", "utilisation", "utilisation_state", "governing", "limit_states",
     "rated_cases", "reasons", "remarks", "basis", "checked", "not_checked",
+)  # fmt: skip
+_OPENING = _template(
+    "start", "end", "right", "left", "bottom", "top", "shape", "origin",
 )  # fmt: skip
 _SPAN = _template("start", "end", "start_support", "end_support")
 _SUPPORT = _template("kind", "bearing", "source")
@@ -72,6 +75,13 @@ def _texts(values: tuple[str, ...]) -> str:
 
 
 def _beam(beam: Beam, span: Span | None, rating: Rating) -> str:
+    row = _row(beam, span, rating)
+    if not beam.openings:
+        return row
+    return f'{row[:-1]}, "openings": {_list(map(_opening, beam.openings))}}}'
+
+
+def _row(beam: Beam, span: Span | None, rating: Rating) -> str:
     governing = rating.governing
     return _BEAM % (
         _text(beam.key),
@@ -97,6 +107,11 @@ def _beam(beam: Beam, span: Span | None, rating: Rating) -> str:
         _texts(rating.checked),
         _texts(rating.not_checked),
     )
+
+
+def _opening(opening: Opening) -> str:
+    box = opening.start, opening.end, opening.right, opening.left, opening.bottom, opening.top
+    return _OPENING % (*map(_number, box), _text(opening.shape), _text(opening.origin))
 
 
 def _span(span: Span) -> str:

@@ -11,7 +11,7 @@ import numpy as np
 from ifccheck.analysis.loads import LoadTable, join_loads, load_table, self_weight_lines
 from ifccheck.analysis.spans import FREE, SpanTable, span_table
 from ifccheck.analysis.stations import SAME_PLACE, StationTable
-from ifccheck.beam import SELF, Anchor, Case, Outline
+from ifccheck.beam import SELF, Anchor, Case
 from ifccheck.mechanics.arrays import (
     ANCHOR_FULL,
     ANCHOR_HOOK,
@@ -22,14 +22,15 @@ from ifccheck.mechanics.arrays import (
     Members,
     Stations,
 )
-from ifccheck.mechanics.spacing import distance_to_surface, nearest_neighbour
 from ifccheck.mechanics.width_profile import pack_strips
+from ifccheck.rating.covers import column, cover_distances
 from ifccheck.rating.disturbed import disturbed
 from ifccheck.rating.runs import (
+    DRAWN,
     RunTable,
+    Section,
     along_axis,
     chords_at,
-    outlines_along,
     profile_of,
     run_table,
     sections_at,
@@ -90,12 +91,24 @@ def disturbed_stretches(subjects: Sequence[Subject]) -> Stretches:
 
 
 @dataclass(frozen=True, slots=True)
+class LossTable:
+    """Where openings take away depth that carries shear, one row each (O)."""
+
+    beam: Ints
+    start: Floats
+    end: Floats
+    height: Floats
+    """[mm]; nan where shear is not rated"""
+
+
+@dataclass(frozen=True, slots=True)
 class Frame:
     """The batch as tables, before stations."""
 
     members: Members
     runs: RunTable
     zones: StirrupTable
+    losses: LossTable
     spans: SpanTable
     faces: Floats
     """(B, 2)"""
@@ -112,7 +125,8 @@ class Frame:
 
 def frame_of(subjects: Sequence[Subject], cases: Sequence[Case]) -> Frame:
     """The beams as tables."""
-    runs, outlines = run_table(subjects)
+    follows = [subject.reinforcement_source != DRAWN for subject in subjects]
+    runs, sections = run_table([subject.runs for subject in subjects], follows)
     spans = span_table([subject.span for subject in subjects])
     row_of_case = {case.name: row for row, case in enumerate(cases)}
     row_of_beam = {subject.beam.key: row for row, subject in enumerate(subjects)}
@@ -120,13 +134,15 @@ def frame_of(subjects: Sequence[Subject], cases: Sequence[Case]) -> Frame:
         [load for subject in subjects for load in subject.loads], row_of_beam, row_of_case
     )
     unit_weights = np.array([subject.unit_weight.value for subject in subjects])
-    weight = _self_weight(runs, spans, row_of_case[SELF], unit_weights)
-    members = members_of(subjects, outlines)
+    body, _ = run_table([subject.weighed for subject in subjects], follows)
+    weight = _self_weight(body, spans, row_of_case[SELF], unit_weights)
+    members = members_of(subjects, sections)
     lengths = np.array([subject.beam.length for subject in subjects])
     return Frame(
         members=members,
         runs=runs,
         zones=stirrup_table(subjects),
+        losses=loss_table(subjects),
         spans=spans,
         faces=np.array([subject.faces for subject in subjects]),
         loads=join_loads(stated, weight),
@@ -162,9 +178,9 @@ def _last_of(beam: Ints) -> Bools:
     return np.append(beam[1:] != beam[:-1], True)[: beam.size]
 
 
-def members_of(subjects: Sequence[Subject], outlines: Sequence[Outline]) -> Members:
+def members_of(subjects: Sequence[Subject], sections: Sequence[Section]) -> Members:
     """The beams as arrays, one row each."""
-    profiles = [profile_of(outline) for outline in outlines]
+    profiles = [profile_of(*section) for section in sections]
     flanges = np.array([profile.overhangs for profile in profiles])
     return Members(
         concrete_strength=np.array([s.concrete_strength.value for s in subjects]),
@@ -189,7 +205,7 @@ def _layers(subjects: Sequence[Subject]) -> dict[str, Any]:
 
     def packed(values: Iterable[float], padding: float = 0.0) -> Floats:
         table = np.full(shape, padding)
-        table[beam, slot] = _column(values)
+        table[beam, slot] = column(values)
         return table
 
     anchors = [
@@ -215,68 +231,6 @@ def _layers(subjects: Sequence[Subject]) -> dict[str, Any]:
     }
 
 
-def _column(values: Iterable[float]) -> Floats:
-    return np.fromiter(values, dtype=np.float64)
-
-
-def cover_distances(subjects: Sequence[Subject]) -> Floats:
-    """dcs of each layer of all beams, one after another.
-
-    The least over its bars of the distance of the bar's centre from the concrete surface and of
-    2/3 of the centre spacing (CSA A23.3 and others) [mm] (L).
-    """
-    layers = [bar for subject in subjects for bar in subject.bars]
-    sizes = np.array([len(bar.ys) for bar in layers], dtype=np.intp)
-    layer = np.repeat(np.arange(sizes.size), sizes)
-    y = _column(place for bar in layers for place in bar.ys)
-    z, start, end = (
-        _column(getattr(bar, name) for bar in layers)[layer] for name in ("z", "start", "end")
-    )
-    counts = np.array([sum(len(bar.ys) for bar in subject.bars) for subject in subjects])
-    nearest = np.minimum(_to_surface(subjects, y, z, counts), _spacing(y, z, start, end, counts))
-    least = np.full(sizes.size, np.inf)
-    np.minimum.at(least, layer, nearest)
-    return least
-
-
-def _to_surface(subjects: Sequence[Subject], y: Floats, z: Floats, counts: Ints) -> Floats:
-    """Distance of each bar from the surface of the sections that it runs through [mm]."""
-    rows: dict[Outline, int] = {}
-    outlines = [subject.beam.runs[0].outline for subject in subjects]
-    section = np.array([rows.setdefault(outline, len(rows)) for outline in outlines])
-    of_bar = np.repeat(section, counts)
-    distance = np.empty(y.size)
-    for outline, row in rows.items():
-        bars = np.flatnonzero(of_bar == row)
-        distance[bars] = distance_to_surface(y[bars], z[bars], outline.rings)
-    first = np.cumsum(counts) - counts
-    for subject, start in zip(subjects, first.tolist(), strict=True):
-        if len(subject.beam.runs) > 1 or subject.beam.runs[0].outline_end is not None:
-            _among_sections(subject, y, z, distance, start)
-    return distance
-
-
-def _among_sections(subject: Subject, y: Floats, z: Floats, distance: Floats, first: int) -> None:
-    """Put in the distances of the bars of one beam whose sections vary, from row ``first`` on."""
-    for layer in subject.bars:
-        bars = slice(first, first + len(layer.ys))
-        outlines = outlines_along(subject.beam.runs, layer.start, layer.end)
-        distance[bars] = np.min(
-            [distance_to_surface(y[bars], z[bars], outline.rings) for outline in outlines], axis=0
-        )
-        first = bars.stop
-
-
-def _spacing(y: Floats, z: Floats, start: Floats, end: Floats, counts: Ints) -> Floats:
-    """2/3 of the distance of each bar to the nearest one beside it [mm]."""
-    first = np.cumsum(counts) - counts
-    spacing = np.empty(y.size)
-    for count in np.unique(counts[counts > 0]).tolist():
-        bars = first[counts == count][:, None] + np.arange(count)
-        spacing[bars] = nearest_neighbour(y[bars], z[bars], start[bars], end[bars])
-    return spacing * 2.0 / 3.0
-
-
 def stirrup_table(subjects: Sequence[Subject]) -> StirrupTable:
     """The stirrup zones of all beams; a beam of which no source speaks has one of unknown area."""
     rows: list[tuple[float, ...]] = []
@@ -290,10 +244,21 @@ def stirrup_table(subjects: Sequence[Subject]) -> StirrupTable:
     return StirrupTable(columns[0].astype(np.intp), *columns[1:])
 
 
+def loss_table(subjects: Sequence[Subject]) -> LossTable:
+    """Where openings take away depth that carries shear, on all beams."""
+    rows = [
+        (beam, loss.start, loss.end, loss.height)
+        for beam, subject in enumerate(subjects)
+        for loss in (subject.body.losses if subject.body else ())
+    ]
+    columns = np.array(rows, dtype=np.float64).reshape(-1, 4).T
+    return LossTable(columns[0].astype(np.intp), *columns[1:])
+
+
 def make_station_arrays(
     frame: Frame, beam: Ints, x: Floats, side: Ints
 ) -> tuple[Members, Stations]:
-    """Look up section and stirrups at every station.
+    """Look up section, stirrups and openings at every station.
 
     Parameters
     ----------
@@ -314,6 +279,7 @@ def make_station_arrays(
     return members, Stations(
         beam=beam,
         section=section,
+        shear_loss=_losses_at(beam, x, side, frame.losses),
         x=x,
         side=side,
         stirrup_area=area,
@@ -373,25 +339,41 @@ def _row_at(beam: Ints, x: Floats, side: Ints, row_beam: Ints, row_start: Floats
     return np.asarray(np.maximum(place, first), dtype=np.intp)
 
 
+def _losses_at(beam: Ints, x: Floats, side: Ints, losses: LossTable) -> Floats:
+    """Depth that openings take away at each station [mm]: of all that hold it together."""
+    lost = np.zeros(x.size)
+    if losses.beam.size:
+        station, row = _held(beam, x, side, losses)
+        np.add.at(lost, station, losses.height[row])
+    return lost
+
+
+def _held(
+    beam: Ints, x: Floats, side: Ints, stretches: StirrupTable | LossTable
+) -> tuple[Ints, Ints]:
+    """Every pair of a station and a stretch of its beam that holds it."""
+    order = np.argsort(beam, kind="stable")
+    first, last = (
+        np.searchsorted(beam[order], stretches.beam),
+        np.searchsorted(beam[order], stretches.beam, side="right"),
+    )
+    lengths = last - first
+    station = order[
+        np.repeat(first - np.cumsum(lengths) + lengths, lengths) + np.arange(lengths.sum())
+    ]
+    row = np.repeat(np.arange(stretches.beam.size), lengths)
+    place = x[station] + 1e-6 * side[station]
+    held = (place >= stretches.start[row] - 1e-9) & (place <= stretches.end[row] + 1e-9)
+    return station[held], row[held]
+
+
 def _stirrups_at(
     beam: Ints, x: Floats, side: Ints, zones: StirrupTable
 ) -> tuple[Floats, Floats, Floats]:
     """Area, spacing and yield strength at each station: the weakest of the zones that hold it."""
     area, spacing = np.zeros(x.size), np.full(x.size, np.inf)
     strength = np.full(x.size, 400.0)
-    order = np.argsort(beam, kind="stable")
-    first, last = (
-        np.searchsorted(beam[order], zones.beam),
-        np.searchsorted(beam[order], zones.beam, side="right"),
-    )
-    lengths = last - first
-    station = order[
-        np.repeat(first - np.cumsum(lengths) + lengths, lengths) + np.arange(lengths.sum())
-    ]
-    zone = np.repeat(np.arange(zones.beam.size), lengths)
-    place = x[station] + 1e-6 * side[station]
-    held = (place >= zones.start[zone] - 1e-9) & (place <= zones.end[zone] + 1e-9)
-    station, zone = station[held], zone[held]
+    station, zone = _held(beam, x, side, zones)
     ratio = zones.area[zone] / zones.spacing[zone]
     weakest_first = np.lexsort((np.where(np.isnan(ratio), -1.0, ratio), station))
     station, zone = station[weakest_first], zone[weakest_first]

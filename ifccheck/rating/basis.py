@@ -3,13 +3,13 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Sequence
+from collections.abc import Iterator, Sequence
 from dataclasses import replace
 from functools import cache, lru_cache
 
 import numpy as np
 
-from ifccheck.beam import Bars, Given, Outline, Stirrups, Support
+from ifccheck.beam import Bars, Flange, Given, Opening, Outline, Stirrups, Support
 from ifccheck.mechanics.arrays import Ints
 from ifccheck.mechanics.outlines import bounds
 from ifccheck.notation import bars_in_a_row
@@ -28,7 +28,7 @@ def bases_of(
     """Strengths, depths, areas, stirrups, span and supports of every beam of a batch."""
     sections = _sections(batch, governing)
     return [
-        (*_materials(subject), *_standing(subject), *_steel(subject), *at_section)
+        (*_materials(subject), *_standing(subject), *_steel(subject), *_body(subject), *at_section)
         for subject, at_section in zip(batch.subjects, sections, strict=True)
     ]
 
@@ -114,6 +114,33 @@ def _steel(subject: Subject) -> list[BasisItem]:
         BasisItem("TopBars", "bars in the upper half", _bars_text(upper), "text", source),
         BasisItem("Stirrups", "stirrups", _stirrups_text(subject), "text", source),
     ]
+
+
+def _body(subject: Subject) -> Iterator[BasisItem]:
+    """What is rated beside the beam's own body, and what was taken off it."""
+    if subject.body and subject.body.flanges:
+        text = "; ".join(map(_flange_text, subject.body.flanges))
+        source = f"model; {subject.body.flange_source}"
+        yield BasisItem("Flange", "slab counted as a flange", text, "text", source)
+    if subject.beam.openings:
+        text = "; ".join(map(_opening_text, subject.beam.openings))
+        yield BasisItem("Openings", "openings taken off", text, "text", "model")
+
+
+def _flange_text(flange: Flange) -> str:
+    return f"{_box_text(flange)}: {flange.origin}"
+
+
+def _opening_text(opening: Opening) -> str:
+    return f"{_box_text(opening)}: {opening.origin}"
+
+
+def _box_text(box: Flange | Opening) -> str:
+    return (
+        f"x = {show(box.start, 'length')} to {show(box.end, 'length')},"
+        f" y = {show(box.right, 'dimension')} to {show(box.left, 'dimension')},"
+        f" z = {show(box.bottom, 'dimension')} to {show(box.top, 'dimension')}"
+    )
 
 
 def _middle(subject: Subject, bar: Bars) -> float:

@@ -87,7 +87,8 @@ def _critical_sections(subjects: Sequence[Subject], frame: Frame, standard: Stan
     """x of the critical section for shear at either end of each beam [mm] (B, 2).
 
     nan where nearer stations must be checked with their own shear: a free end, an end whose
-    reaction does not compress it, or a concentrated load between the face and that section.
+    reaction does not compress it, or a concentrated load or an opening between the face and that
+    section.
     """
     beams = len(subjects)
     beam = np.repeat(np.arange(beams), 2)
@@ -95,7 +96,8 @@ def _critical_sections(subjects: Sequence[Subject], frame: Frame, standard: Stan
     at_faces = make_station_arrays(frame, beam, frame.faces.ravel(), side)
     distance = standard.critical_distance(*at_faces)
     if frame.runs.beam.size > beams or frame.runs.tapers:
-        there = make_station_arrays(frame, beam, frame.faces.ravel() + distance * side, side)
+        reach = np.where(np.isnan(distance), 0.0, distance)
+        there = make_station_arrays(frame, beam, frame.faces.ravel() + reach * side, side)
         distance = np.minimum(distance, standard.critical_distance(*there))
     distance = distance.reshape(beams, 2)
     critical = frame.faces + distance * np.array([1.0, -1.0])
@@ -103,7 +105,7 @@ def _critical_sections(subjects: Sequence[Subject], frame: Frame, standard: Stan
     held = np.stack([frame.spans.start_kind, frame.spans.end_kind], axis=-1) != FREE
     middle = frame.faces.mean(axis=1, keepdims=True)
     short = (critical - middle) * np.array([1.0, -1.0]) > 0.0
-    usable = direct & held & ~short & ~_concentrated(frame, critical)
+    usable = direct & held & ~short & ~_concentrated(frame, critical) & ~_opened(frame, critical)
     return np.where(usable, critical, np.nan)
 
 
@@ -128,6 +130,16 @@ def _concentrated(frame: Frame, critical: Floats) -> Bools:
     return found
 
 
+def _opened(frame: Frame, critical: Floats) -> Bools:
+    """Whether an opening begins to take depth between the face and the section (B, 2)."""
+    found = np.zeros(critical.shape, dtype=np.bool_)
+    losses = frame.losses
+    (first, last), (near, far) = frame.faces[losses.beam].T, critical[losses.beam].T
+    found[losses.beam[(losses.start > first) & (losses.start <= near)], 0] = True
+    found[losses.beam[(losses.end < last) & (losses.end >= far)], 1] = True
+    return found
+
+
 def _effects(frame: Frame, critical: Floats, factors: Floats) -> tuple[Effects, StationTable]:
     """Effects at stations that include every place where a greatest moment turns."""
     fixed = join_places(*_fixed_places(frame, critical))
@@ -146,7 +158,7 @@ def _effects(frame: Frame, critical: Floats, factors: Floats) -> tuple[Effects, 
 def _fixed_places(frame: Frame, critical: Floats) -> list[Places]:
     """Everything but loads at which something changes along the beams."""
     beams = np.arange(critical.shape[0])
-    m, runs, zones = frame.members, frame.runs, frame.zones
+    m, runs, zones, losses = frame.members, frame.runs, frame.zones, frame.losses
     row, layer = np.nonzero(m.layer_area > 0.0)
     edges = [
         (np.repeat(beams, 2), frame.faces.ravel(), True),
@@ -160,6 +172,8 @@ def _fixed_places(frame: Frame, critical: Floats) -> list[Places]:
         (frame.disturbed.beam, frame.disturbed.end, False),
         (zones.beam, zones.start, True),
         (zones.beam, zones.end, True),
+        (losses.beam, losses.start, True),
+        (losses.beam, losses.end, True),
     ]
     return [
         places(beam[finite], x[finite], two_sided=both)

@@ -12,7 +12,8 @@ import numpy as np
 from ifccheck.beam import Bars, Outline, Run
 from ifccheck.mechanics.arrays import Chords, Floats, Ints, Members
 from ifccheck.mechanics.outlines import bounds, rings_between
-from ifccheck.mechanics.width_profile import overhangs, pack_strips, strips_of
+from ifccheck.mechanics.overhangs import overhangs
+from ifccheck.mechanics.width_profile import pack_strips, strips_of
 from ifccheck.rating.subject import Subject
 
 WEIGHED = 8
@@ -66,31 +67,41 @@ class Profile:
     """[mm2]"""
 
 
+Section = tuple[Outline, Outline | None]
+"""An outline, and what it was before openings were taken off it where there are such"""
+
+
 @lru_cache(maxsize=4096)  # few outlines make most buildings
-def profile_of(outline: Outline) -> Profile:
-    """Measure an outline."""
+def profile_of(outline: Outline, whole: Outline | None = None) -> Profile:
+    """Measure an outline, of which ``whole`` is what it was before openings were taken off."""
     strips = strips_of(outline.rings)
     area = float(np.sum((strips[:, 1] - strips[:, 0]) * (strips[:, 2] + strips[:, 3]) / 2.0))
-    return Profile(strips, overhangs(outline.rings), area)
+    return Profile(strips, overhangs(outline.rings, whole.rings if whole else None), area)
 
 
-def run_table(subjects: Sequence[Subject]) -> tuple[RunTable, tuple[Outline, ...]]:
-    """Number the distinct outlines and list where each beam has which."""
-    rows: dict[Outline, int] = {}
+def run_table(
+    runs_of_beams: Sequence[Sequence[Run]], follows: Sequence[bool]
+) -> tuple[RunTable, tuple[Section, ...]]:
+    """Number the distinct sections and list where each beam has which.
+
+    Parameters
+    ----------
+    runs_of_beams, follows
+        The runs of each beam, and whether its bars lie along its faces.
+    """
+    rows: dict[Section, int] = {}
     tapers: dict[Taper, int] = {}
     table: list[tuple[float, ...]] = []
-    for beam, subject in enumerate(subjects):
-        follows = subject.reinforcement_source != DRAWN
-        for run in subject.beam.runs:
-            section = rows.setdefault(run.outline, len(rows))
+    for beam, (runs, along) in enumerate(zip(runs_of_beams, follows, strict=True)):
+        for run in runs:
+            section = rows.setdefault((run.outline, run.whole), len(rows))
             taper, rises = -1, (0.0, 0.0)
             if run.outline_end is not None:
                 taper = tapers.setdefault(Taper(run.outline, run.outline_end), len(tapers))
                 rises = _rises(run, run.outline_end)
-            table.append((beam, run.start, run.end, section, taper, *rises, follows))
-    beam, start, end, section, taper, top, soffit, follows = np.array(table, dtype=np.float64).T
-    outlines = tuple(rows)
-    areas = np.array([profile_of(outline).area for outline in outlines])
+            table.append((beam, run.start, run.end, section, taper, *rises, along))
+    beam, start, end, section, taper, top, soffit, steel = np.array(table, dtype=np.float64).T
+    areas = np.array([profile_of(*section).area for section in rows])
     section = section.astype(np.intp)
     return RunTable(
         beam=beam.astype(np.intp),
@@ -102,8 +113,8 @@ def run_table(subjects: Sequence[Subject]) -> tuple[RunTable, tuple[Outline, ...
         tapers=tuple(tapers),
         top_rise=top,
         soffit_rise=soffit,
-        steel_follows=follows.astype(np.intp),
-    ), outlines
+        steel_follows=steel.astype(np.intp),
+    ), tuple(rows)
 
 
 def _rises(run: Run, last: Outline) -> tuple[float, float]:
@@ -160,25 +171,6 @@ def _with_profiles(members: Members, profiles: Sequence[Profile]) -> Members:
 def _trimmed(strips: Floats) -> Floats:
     """The strips of a section without those that only pad it."""
     return np.asarray(strips[strips[:, 1] > strips[:, 0]])
-
-
-def outlines_along(runs: Sequence[Run], start: float, end: float) -> list[Outline]:
-    """The outlines on a stretch of a beam; of a taper those at the ends of what it has of it.
-
-    Parameters
-    ----------
-    runs
-        Of one beam, at least one.
-    start, end
-        The stretch, which may reach beyond the beam's ends [mm].
-    """
-    found: list[Outline] = []
-    for run in runs:
-        low, high = max(run.start, start), min(run.end, end)
-        if low <= high:
-            found += [outline_at(run, low), outline_at(run, high)]
-    nearest = runs[0] if end < runs[0].start else runs[-1]
-    return list(dict.fromkeys(found)) or [nearest.outline]
 
 
 def outline_at(run: Run, x: float) -> Outline:

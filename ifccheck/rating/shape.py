@@ -30,6 +30,20 @@ def shape_reasons(
     standard
         Whose beam theory is asked for.
     """
+    yield from deep_member(runs, faces, standard)
+    stretches = disturbed(runs)
+    start, end = max(span.start, 0.0), min(span.end, runs[-1].end)
+    left = undisturbed_length(stretches, start, end)
+    if left < max(LEAST_PART * (span.end - span.start), LEAST_LENGTH):
+        yield Reason("steps in the section leave no stretch of it to be rated")
+    for stretch in stretches:
+        yield Reason(stretch.text, blocking=False)
+
+
+def deep_member(
+    runs: Sequence[Run], faces: tuple[float, float], standard: Standard
+) -> Iterator[Reason]:
+    """Why a beam, with what it is cast with, is too deep for its span; see ``shape_reasons``."""
     depth = max(_greatest_depth(run) for run in runs)
     clear = faces[1] - faces[0]
     if clear < standard.least_slenderness * depth:
@@ -38,13 +52,6 @@ def shape_reasons(
             f" {show_ratio(clear / depth)} times its depth, less than"
             f" {standard.least_slenderness:g} (clause {standard.slenderness_clause})"
         )
-    stretches = disturbed(runs)
-    start, end = max(span.start, 0.0), min(span.end, runs[-1].end)
-    left = undisturbed_length(stretches, start, end)
-    if left < max(LEAST_PART * (span.end - span.start), LEAST_LENGTH):
-        yield Reason("steps in the section leave no stretch of it to be rated")
-    for stretch in stretches:
-        yield Reason(stretch.text, blocking=False)
 
 
 def _greatest_depth(run: Run) -> float:

@@ -4,7 +4,20 @@ from __future__ import annotations
 
 from dataclasses import dataclass
 
-from ifccheck.beam import Bars, Beam, Face, Given, Line, Load, Reason, Remark, Span, Stirrups
+from ifccheck.beam import (
+    Bars,
+    Beam,
+    Face,
+    Given,
+    Line,
+    Load,
+    RatedBody,
+    Reason,
+    Remark,
+    Run,
+    Span,
+    Stirrups,
+)
 
 
 @dataclass(frozen=True, slots=True)
@@ -48,6 +61,18 @@ class Subject:
     """One for each entry of ``stirrups``"""
     reasons: tuple[Reason, ...]
     remarks: tuple[Remark, ...]
+    body: RatedBody | None = None
+    """What is rated of the beam where that is not its body alone; None where it is"""
+
+    @property
+    def runs(self) -> tuple[Run, ...]:
+        """The outlines to rate."""
+        return self.body.runs if self.body else self.beam.runs
+
+    @property
+    def weighed(self) -> tuple[Run, ...]:
+        """The outlines that self weight is that of."""
+        return self.body.weighed if self.body else self.beam.runs
 
     @property
     def span(self) -> Span:

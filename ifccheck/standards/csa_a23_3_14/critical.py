@@ -131,7 +131,7 @@ def surroundings(
 
 def _least_lever(lever: Floats, shear_depth: Floats, first: Ints, counts: Ints) -> Floats:
     """Least lever arm of each beam, or least dv where that is greater, at all its stations."""
-    known = np.isfinite(lever)
+    known = np.isfinite(lever + shear_depth)
     least = np.minimum.reduceat(np.where(known, lever, np.inf), first)
     depth = np.minimum.reduceat(np.where(known, shear_depth, np.inf), first)
     return np.repeat(np.maximum(least, depth), counts)

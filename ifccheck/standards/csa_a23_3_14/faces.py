@@ -64,7 +64,8 @@ class FaceState:
     effective_depth: Floats
     """d to the centroid of the flexural tension steel [mm]; nan where there is none"""
     shear_depth: Floats
-    """dv, the greater of 0.9 d and 0.72 h [mm]; 0.72 h where there is no tension steel"""
+    """dv, the greater of 0.9 d and 0.72 h [mm]; 0.72 h where there is no tension steel; less what
+    openings take away"""
     web_width: Floats
     """bw, the least width between the compression face and the depth d [mm]"""
     tension_area: Floats

@@ -270,7 +270,8 @@ def _outside(web: Web, cracked: Cracked) -> Bools | None:
     """Where the angle is outside its range."""
     if not web.doubtful:
         return cracked.beyond_strain
-    outside: Bools = np.broadcast_to(web.rest.beyond_simplified[web.rows()], cracked.counting.shape)
+    beyond = web.rest.beyond_simplified[web.rows()] | np.isnan(web.shear_depth)
+    outside: Bools = np.broadcast_to(beyond, cracked.counting.shape)
     if cracked.beyond_strain is not None:
         outside = outside | cracked.beyond_strain
     return outside if web.simplified else outside | ~(area_there(web, cracked) > 0.0)

@@ -17,7 +17,7 @@ from ifccheck.mechanics.arrays import (
     Members,
     Stations,
 )
-from ifccheck.mechanics.width_profile import bottom_of, top_of
+from ifccheck.mechanics.width_profile import SLIVER, bottom_of, gaps_of, top_of
 from ifccheck.standards.contract import Options
 from ifccheck.standards.csa_a23_3_14 import development, materials
 from ifccheck.standards.csa_a23_3_14.critical import (
@@ -75,6 +75,8 @@ class Prepared:
     """f'c lies outside 20 to 80 MPa (8.6.1.1)"""
     beyond_yield: Bools
     """A longitudinal bar's fy exceeds 500 MPa (8.5.1)"""
+    shear_loss: Floats
+    """Depth that openings take off both dv [mm]; nan where shear cannot be rated"""
     surroundings: Surroundings
     """Faces and critical sections as seen from each station: critical.surroundings(...)"""
     chords: Chords | None
@@ -103,12 +105,16 @@ def prepare(members: Members, stations: Stations, options: Options) -> Prepared:
     -----
     Equilibrium is solved once for neighbouring stations of a beam that have the same section
     and equally developed bars. Stations are worked off by the number of layers and strips that
-    they really have, so that one intricate section does not slow the others.
+    they really have, so that one intricate section does not slow the others. A section that an
+    opening divides is not rated in shear where less than its height is said to be lost.
     """
     strength = members.concrete_strength[stations.beam]
     bars = _layers(members)
-    sagging, hogging, steel_yield = _faces(members, bars, stations)
+    *faces, steel_yield = _faces(members, bars, stations)
     strips = members.strips
+    lost = stations.shear_loss
+    lost = np.where(gaps_of(strips)[stations.section] > lost + SLIVER, np.nan, lost)
+    sagging, hogging = (_opened(face, lost) for face in faces)
     return Prepared(
         beam=stations.beam,
         x=stations.x,
@@ -127,6 +133,7 @@ def prepare(members: Members, stations: Stations, options: Options) -> Prepared:
         hogging=hogging,
         beyond_concrete_strength=materials.beyond_concrete_strength(strength),
         beyond_yield=materials.beyond_yield(steel_yield),
+        shear_loss=lost,
         surroundings=_surroundings(stations, sagging, hogging, options),
         chords=stations.chords,
     )
@@ -161,7 +168,14 @@ def critical_distance(members: Members, stations: Stations) -> Floats:
             hogging_area=top.full.sum(axis=1),
         )
         distance[rows] = depth[state]
-    return distance
+    return distance - stations.shear_loss
+
+
+def _opened(face: FaceState, shear_loss: Floats) -> FaceState:
+    """The face with dv less what openings take away."""
+    if not shear_loss.any():
+        return face
+    return replace(face, shear_depth=face.shear_depth - shear_loss)
 
 
 def _surroundings(

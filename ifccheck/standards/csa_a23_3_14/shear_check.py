@@ -53,6 +53,7 @@ class ShearDetails:
     """Moment that goes with it [N*mm]"""
     top_in_tension: Bools
     shear_depth: Floats
+    shear_loss: Floats
     web_width: Floats
     concrete_strength: Floats
     density_factor: Floats
@@ -84,10 +85,15 @@ class ShearDetails:
     general: Bools
     general_effective: Bools
     general_plain: Bools
+    opened: Bools
+    """Openings take depth from the web"""
+    opened_general_plain: Bools
     simplified: Bools
     simplified_effective: Bools
     simplified_plain_depth: Bools
     simplified_plain_spacing: Bools
+    opened_simplified_plain_depth: Bools
+    opened_simplified_plain_spacing: Bools
     computable: Bools
     """The concrete term can be worked out"""
     without_steel: Bools
@@ -100,6 +106,8 @@ class ShearDetails:
     beyond_strain: Bools
     beyond_simplified: Bools
     beyond_materials: Bools
+    disturbed: Bools
+    """An opening disturbs the section more than sectional design allows for"""
 
 
 @dataclass(frozen=True, slots=True)
@@ -218,6 +226,7 @@ def _details(
         moment=acts.moment,
         top_in_tension=np.full(web.shear_depth.shape, web.top),
         shear_depth=web.shear_depth,
+        shear_loss=rest.shear_loss[rows],
         web_width=section.web_width,
         concrete_strength=section.concrete_strength,
         density_factor=section.density_factor,
@@ -262,7 +271,7 @@ def _beta(web: Web, cracked: Cracked, spacing: Floats) -> Floats:
     rest, rows = web.rest, web.rows()
     return formulas.simplified_beta(
         stirrups=cracked.counting > 0.0,
-        shear_depth=web.shear_depth,
+        shear_depth=web.shear_depth + rest.shear_loss[rows],
         crack_spacing=rest.crack_spacing[rows],
         aggregate_size=rest.aggregate_size[rows],
     )
@@ -284,7 +293,8 @@ def _methods(section: Section, effective: Bools, area: Floats) -> dict[str, Any]
     simplified = np.full(web.outside.shape, web.simplified)
     rest, rows = web.rest, web.rows()
     aggregate, unknown = rest.aggregate_size[rows], rest.legs_unknown[rows]
-    by_depth = aggregate >= formulas.SIMPLIFIED_AGGREGATE
+    by_depth, lost = aggregate >= formulas.SIMPLIFIED_AGGREGATE, rest.shear_loss[rows]
+    opened = lost != 0.0
     general = ~simplified & (area > 0.0)
     computable = simplified | general
     return {
@@ -293,11 +303,16 @@ def _methods(section: Section, effective: Bools, area: Floats) -> dict[str, Any]
         "plain": plain,
         "general": general,
         "general_effective": effective & general,
-        "general_plain": plain & general,
+        "general_plain": plain & general & ~opened,
+        "opened": opened,
+        "disturbed": np.isnan(lost),
+        "opened_general_plain": plain & general & opened,
         "simplified": simplified,
         "simplified_effective": effective & simplified,
-        "simplified_plain_depth": plain & simplified & by_depth,
-        "simplified_plain_spacing": plain & simplified & ~by_depth,
+        "simplified_plain_depth": plain & simplified & by_depth & ~opened,
+        "simplified_plain_spacing": plain & simplified & ~by_depth & ~opened,
+        "opened_simplified_plain_depth": plain & simplified & by_depth & opened,
+        "opened_simplified_plain_spacing": plain & simplified & ~by_depth & opened,
         "computable": computable,
         "without_steel": ~computable,
         "idle": plain & ~unknown,
@@ -320,6 +335,11 @@ def outside_of(details: Any, checked: Bools) -> tuple[Outside, ...]:
             "fy above 500 MPa, or f'c outside 20 to 80 MPa",
             details.beyond_materials,
         ),
+        (
+            "11.3",
+            "an opening, recess or notch disturbs the web too much for the design of sections",
+            details.disturbed,
+        ),
     )
     return tuple(Outside(clause, text, mask & checked) for clause, text, mask in found)
 
@@ -338,7 +358,7 @@ def check(prepared: Prepared, demand: Demand) -> Check:
         demand=details.shear,
         resistance=details.resistance,
         utilisation=utilisation,
-        outside=outside_of(details, (details.shear > 0.0) & prepared.inside),
+        outside=outside_of(details, (details.shear != 0.0) & prepared.inside),
         details=details,
     )
 

@@ -31,6 +31,8 @@ class Seldom:
     """The face holds tension steel, developed or not"""
     critical_area: Floats
     critical_distance: Floats
+    shear_loss: Floats
+    """What openings have taken off dv [mm]; nan where shear cannot be rated"""
     aggregate_size: Floats
     """Effective [mm]"""
     crack_spacing: Floats
@@ -193,7 +195,9 @@ def _chord_rates(prepared: Prepared, face: FaceState, *, top: bool) -> Floats | 
     steel = chords.steel_follows.astype(np.float64)
     upper = -chords.top_rise * (steel if top else 1.0)
     lower = chords.soffit_rise * (1.0 if top else steel)
-    rates: Floats = np.stack([upper, lower], axis=-1) / face.shear_depth[:, None]
+    rises = np.stack([upper, lower], axis=-1)
+    # a level chord adds nothing, also where an opening leaves no known depth
+    rates: Floats = np.where(rises == 0.0, 0.0, rises / face.shear_depth[:, None])
     return rates
 
 
@@ -212,9 +216,10 @@ def _seldom(
         has_steel=face.tension_area_full > 0.0,
         critical_area=around.critical_area_hogging if top else around.critical_area_sagging,
         critical_distance=around.critical_distance,
+        shear_loss=prepared.shear_loss,
         aggregate_size=aggregate,
         crack_spacing=formulas.equivalent_crack_spacing(
-            shear_depth=face.shear_depth, aggregate_size=aggregate
+            shear_depth=face.shear_depth + prepared.shear_loss, aggregate_size=aggregate
         ),
         legs_unknown=np.isnan(prepared.stirrup_area),
         plain_unknown=np.isnan(plain),
@@ -249,10 +254,10 @@ def _beyond_materials(prepared: Prepared) -> Bools:
 def _concrete_terms(
     prepared: Prepared, face: FaceState, aggregate: Floats
 ) -> tuple[Floats, Floats]:
-    """Vc in a web that nothing strains, without and with stirrups that count [N]."""
-    spacing = formulas.equivalent_crack_spacing(
-        shear_depth=face.shear_depth, aggregate_size=aggregate
-    )
+    """Vc in a web that nothing strains, without and with stirrups that count [N]; cracks are
+    spaced as in the web without openings."""
+    whole = face.shear_depth + prepared.shear_loss
+    spacing = formulas.equivalent_crack_spacing(shear_depth=whole, aggregate_size=aggregate)
     unit = formulas.concrete_resistance(
         beta=np.array(1.0),
         concrete_strength=prepared.concrete_strength,
@@ -264,7 +269,7 @@ def _concrete_terms(
         plain, counting = (
             formulas.simplified_beta(
                 stirrups=np.array(stirrups),
-                shear_depth=face.shear_depth,
+                shear_depth=whole,
                 crack_spacing=spacing,
                 aggregate_size=aggregate,
             )

@@ -1,0 +1,91 @@
+"""Members in plan that carry a slab beside a beam, or frame into the beam."""
+
+from __future__ import annotations
+
+from collections.abc import Collection, Sequence
+from itertools import product
+from typing import NamedTuple
+
+from ifccheck.beam import Axis, Box, Member, Ring
+from ifccheck.frame.contacts import kind_of
+
+WEBS = ("IfcBeam", "IfcWall", "IfcMember")
+"""Members that may carry a slab as the beam does"""
+LEVEL = 0.5
+"""Greatest z of the unit vector of what lies rather than stands"""
+SAME_WAY = 0.5
+"""Least cosine between a beam and another that is the next web"""
+UPRIGHT = 1e-6
+"""How far from the vertical an axis may be whose box is a rectangle in plan"""
+
+
+class Web(NamedTuple):
+    """A member in plan."""
+
+    ring: Ring
+    """Convex"""
+    low: float
+    high: float
+    way: tuple[float, float]
+    name: str
+    step: int
+
+    def runs_with(self, axis: Axis) -> bool:
+        """Whether it runs the way of a beam rather than across it."""
+        return abs(self.way[0] * axis.x[0] + self.way[1] * axis.x[1]) >= SAME_WAY
+
+
+def webs_of(members: Sequence[Member], beams: Collection[int]) -> list[Web]:
+    """The members that may carry a slab: by their class, or as beams in scope by step id."""
+    return [web_of(one) for one in members if one.step_id in beams or _may_carry(one)]
+
+
+def _may_carry(member: Member) -> bool:
+    kind, box = kind_of(member.ifc_class), member.box
+    if kind not in WEBS:
+        return False
+    longest = box.axes[max(range(3), key=lambda row: box.half[row])]
+    return kind == "IfcWall" or abs(longest[2]) < LEVEL
+
+
+def web_of(member: Member) -> Web:
+    """A member in plan by its box."""
+    box = member.box
+    reach = sum(abs(axis[2]) * half for axis, half in zip(box.axes, box.half, strict=True))
+    lying = [row for row in range(3) if abs(box.axes[row][2]) < LEVEL]
+    x, y, _ = box.axes[max(lying, key=lambda row: box.half[row])]
+    return Web(
+        ring=_ring(box),
+        low=box.centre[2] - reach,
+        high=box.centre[2] + reach,
+        way=(x, y),
+        name=f"{member.name or member.guid} ({member.ifc_class})",
+        step=member.step_id,
+    )
+
+
+def _ring(box: Box) -> Ring:
+    """What a box covers in plan."""
+    flat = [row for row in range(3) if abs(box.axes[row][2]) < UPRIGHT]
+    x, y, _ = box.centre
+    if len(flat) != 2:
+        return _hull(box)
+    (ax, ay, _), (bx, by, _) = (box.axes[row] for row in flat)
+    a, b = (box.half[row] for row in flat)
+    signs = ((-a, -b), (a, -b), (a, b), (-a, b))
+    return tuple((x + s * ax + t * bx, y + s * ay + t * by) for s, t in signs)
+
+
+def _hull(box: Box) -> Ring:
+    from shapely import MultiPoint, Polygon
+
+    places = []
+    for signs in product((-1.0, 1.0), repeat=3):
+        steps = [sign * half for sign, half in zip(signs, box.half, strict=True)]
+        x, y = (
+            box.centre[k] + sum(s * axis[k] for s, axis in zip(steps, box.axes, strict=True))
+            for k in range(2)
+        )
+        places.append((x, y))
+    hull = MultiPoint(places).convex_hull
+    return tuple((x, y) for x, y in hull.exterior.coords[:-1]) if isinstance(hull, Polygon) else ()

@@ -1,0 +1,49 @@
+"""Whether a model says that a member is precast."""
+
+from __future__ import annotations
+
+import re
+from functools import lru_cache
+from typing import TYPE_CHECKING
+
+from ifccheck.ifc.entity import get
+from ifccheck.ifc.properties import Sets
+from ifccheck.ifc.scope import Clues
+from ifccheck.ifc.strength import GENERAL
+
+if TYPE_CHECKING:
+    from ifccheck.ifc.context import Context
+
+PRECAST = re.compile(
+    r"pre-?cast|pre-?fab|fertigteil|filigran|préfabriqu|prefabrik|pr[eé]-?moldad|hollow-?core"
+    r"|double[- ]tee|kanaalplaat|breedplaat",
+    re.IGNORECASE,
+)
+MADE_ELSEWHERE = re.compile(r"factory|shop|off-?site|plant", re.IGNORECASE)
+HOW_MADE = ("ConstructionMethod", "CastingMethod")
+"""Properties of Pset_ConcreteElementGeneral that tell how a member is made."""
+PRECAST_SETS = ("Pset_PrecastConcreteElementGeneral", "Pset_PrecastConcreteElementFabrication")
+
+
+@lru_cache(maxsize=8192)
+def _speaks_of_precast(name: str) -> bool:
+    return PRECAST.search(name) is not None
+
+
+def told_precast(context: Context, step_id: int, clues: Clues, sets: Sets) -> str:
+    """Return what tells that a member is precast; empty where nothing does."""
+    for name in (*clues.definition.names, *clues.names):
+        if _speaks_of_precast(name):
+            return f'name "{name}"'
+    for set_name in PRECAST_SETS:
+        if set_name in sets:
+            return set_name
+    for name in HOW_MADE:
+        value = sets.get(GENERAL, {}).get(name)
+        said = str(value.value) if value is not None else ""
+        if PRECAST.search(said) or MADE_ELSEWHERE.search(said):
+            return f"{GENERAL}.{name} {said}"
+    for whole in map(context.file.by_id, context.relations.ancestors(step_id)):
+        if get(whole, "AssemblyPlace") == "FACTORY":
+            return f"#{whole.id()} {whole.is_a()} of the factory"
+    return ""

@@ -1,0 +1,94 @@
+"""How near the bars of a batch lie to the concrete's surface and to one another."""
+
+from __future__ import annotations
+
+from collections import defaultdict
+from collections.abc import Iterable, Iterator, Sequence
+
+import numpy as np
+
+from ifccheck.beam import Outline, Run
+from ifccheck.mechanics.arrays import Floats, Ints
+from ifccheck.mechanics.spacing import distance_to_surface, nearest_neighbour
+from ifccheck.rating.runs import outline_at
+from ifccheck.rating.subject import Subject
+
+
+def column(values: Iterable[float]) -> Floats:
+    """Numbers as an array."""
+    return np.fromiter(values, dtype=np.float64)
+
+
+def cover_distances(subjects: Sequence[Subject]) -> Floats:
+    """dcs of each layer of all beams, one after another.
+
+    The least over its bars of the distance of the bar's centre from the concrete surface and of
+    2/3 of the centre spacing (CSA A23.3 and others) [mm] (L).
+    """
+    layers = [bar for subject in subjects for bar in subject.bars]
+    sizes = np.array([len(bar.ys) for bar in layers], dtype=np.intp)
+    layer = np.repeat(np.arange(sizes.size), sizes)
+    y = column(place for bar in layers for place in bar.ys)
+    z, start, end = (
+        column(getattr(bar, name) for bar in layers)[layer] for name in ("z", "start", "end")
+    )
+    counts = np.array([sum(len(bar.ys) for bar in subject.bars) for subject in subjects])
+    nearest = np.minimum(
+        _to_surface(subjects, y, z, start, end, counts), _spacing(y, z, start, end, counts)
+    )
+    least = np.full(sizes.size, np.inf)
+    np.minimum.at(least, layer, nearest)
+    return least
+
+
+def _to_surface(
+    subjects: Sequence[Subject], y: Floats, z: Floats, start: Floats, end: Floats, counts: Ints
+) -> Floats:
+    """Distance of each bar from the surface of the sections of its beam that it runs through [mm]:
+    the least of them."""
+    distance = np.full(y.size, np.inf)
+    for outline, parts in _bars_of_outlines(subjects, start, end, counts).items():
+        bars = np.concatenate(parts)
+        found = distance_to_surface(y[bars], z[bars], outline.rings)
+        distance[bars] = np.minimum(distance[bars], found)
+    return distance
+
+
+def _bars_of_outlines(
+    subjects: Sequence[Subject], start: Floats, end: Floats, counts: Ints
+) -> dict[Outline, list[Ints]]:
+    """Rows of the bars that run through each outline; one that runs through none is told by the
+    first of its beam. In a taper a bar runs through those at the ends of what it has of it."""
+    found: dict[Outline, list[Ints]] = defaultdict(list)
+    first = 0
+    for subject, count in zip(subjects, counts.tolist(), strict=True):
+        bars = np.arange(first, first + count)
+        first += count
+        for run in subject.runs:
+            meets = bars[(start[bars] < run.end) & (end[bars] > run.start)]
+            for outline, rows in _within(run, meets, start, end):
+                found[outline].append(rows)
+            if run is subject.runs[0]:
+                beyond = (end[bars] <= run.start) | (start[bars] >= subject.runs[-1].end)
+                found[run.outline].append(bars[beyond])
+    return found
+
+
+def _within(run: Run, bars: Ints, start: Floats, end: Floats) -> Iterator[tuple[Outline, Ints]]:
+    """The outlines of a run with the bars that lie in each."""
+    if run.outline_end is None:
+        yield run.outline, bars
+        return
+    for row in bars:
+        for place in (max(run.start, start[row]), min(run.end, end[row])):
+            yield outline_at(run, place), np.array([row])
+
+
+def _spacing(y: Floats, z: Floats, start: Floats, end: Floats, counts: Ints) -> Floats:
+    """2/3 of the distance of each bar to the nearest one beside it [mm]."""
+    first = np.cumsum(counts) - counts
+    spacing = np.empty(y.size)
+    for count in np.unique(counts[counts > 0]).tolist():
+        bars = first[counts == count][:, None] + np.arange(count)
+        spacing[bars] = nearest_neighbour(y[bars], z[bars], start[bars], end[bars])
+    return spacing * 2.0 / 3.0

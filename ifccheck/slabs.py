@@ -1,0 +1,43 @@
+"""Slabs that beams may be cast with, and what of them counts as a flange.
+
+Frozen dataclasses only; read as part of ``beam``.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+
+@dataclass(frozen=True, slots=True)
+class Slab:
+    """A level slab of one thickness: its rings in plan, the outer one and then the voids [mm]."""
+
+    step_id: int
+    name: str
+    """Name and class, for people"""
+    rings: tuple[tuple[tuple[float, float], ...], ...]
+    bottom: float
+    """Level of its underside in the building [mm]"""
+    top: float
+    strength: float | None
+    """Of its concrete, where the model states it [MPa]"""
+    doubt: str = ""
+    """Why nothing of it may count as a flange; empty where it may"""
+
+
+@dataclass(frozen=True, slots=True)
+class Flange:
+    """Slab beside a beam, or on it, that may count as its flange: a box in the beam's axes [mm]."""
+
+    start: float
+    end: float
+    right: float
+    left: float
+    bottom: float
+    top: float
+    origin: str
+    """The slab, and what limits its width"""
+    strength: float | None
+    """Of the slab's concrete, where the model states it [MPa]"""
+    on_top: bool = False
+    """It lies on the beam's top, and counts only where the engineer says that both are one"""

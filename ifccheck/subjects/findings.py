@@ -1,0 +1,60 @@
+"""What is known of all beams of a model, and what is found out about one while it is gathered."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping, Sequence, Set
+from dataclasses import dataclass, field
+
+from ifccheck.beam import Contact, Given, Reason, Remark, Support, Unmeasured
+from ifccheck.brief.model import Brief
+from ifccheck.brief.statements import BeamStatement, MaterialStatement
+from ifccheck.frame.flanges import Slabs
+from ifccheck.frame.openings import Net
+from ifccheck.standards import Standard
+
+NO_MATERIAL = MaterialStatement()
+
+
+@dataclass(slots=True)
+class Findings:
+    """Reasons and remarks on one beam while it is gathered."""
+
+    key: str
+    reasons: list[Reason] = field(default_factory=list)
+    remarks: list[Remark] = field(default_factory=list)
+
+    def refuse(self, text: str, *, blocking: bool = True) -> None:
+        """Note why the beam cannot be rated."""
+        self.reasons.append(Reason(text, blocking))
+
+    def take(self, net: Net) -> None:
+        """Note what openings bring."""
+        self.reasons += net.reasons
+        self.remarks += net.remarks
+
+    def assume(self, label: str, given: Given) -> Given:
+        """Note an assumed value."""
+        if given.assumed:
+            text = f"{label} assumed: {given.source}"
+            self.remarks.append(Remark(self.key, "basis", text, "assumption"))
+        return given
+
+
+@dataclass(frozen=True, slots=True)
+class Sources:
+    """What is known of all beams of a model, by key."""
+
+    brief: Brief
+    standard: Standard
+    contacts: Mapping[str, Sequence[Contact]]
+    unmeasured: Sequence[Unmeasured]
+    statements: Mapping[str, BeamStatement]
+    materials: Mapping[str, MaterialStatement]
+    defaults: MaterialStatement
+    supports: Mapping[str, tuple[Support, Support] | Reason]
+    support_remarks: Mapping[str, Sequence[Remark]]
+    unit_weight: Given
+    """By the brief [N/mm3]"""
+    crane_cases: Set[str]
+    permanent_cases: Set[str]
+    slabs: Slabs

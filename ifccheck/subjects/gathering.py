@@ -1,0 +1,233 @@
+"""Joins what the model and the brief say of each beam into what its rating rests on."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import dataclass
+from typing import TypeVar
+
+from ifccheck.beam import (
+    Beam,
+    Given,
+    Load,
+    Model,
+    Reason,
+    Remark,
+)
+from ifccheck.brief.loads import loads_on_beams
+from ifccheck.brief.merging import Matches
+from ifccheck.brief.model import Brief
+from ifccheck.brief.statements import (
+    BeamStatement,
+    default_materials,
+    materials,
+    slab_flange,
+    span_reason,
+    statements,
+)
+from ifccheck.brief.supports import resolve_supports, stated_ends
+from ifccheck.frame.carrying import contacts_of, pressed_ends
+from ifccheck.frame.flanges import NO_MEETING, Slabs
+from ifccheck.frame.openings import Net, net_of
+from ifccheck.frame.reactions import loaded_from_side, unknown_reactions
+from ifccheck.frame.slab_flanges import Asked, counted
+from ifccheck.frame.spans import Standing, stand_alone
+from ifccheck.rating.shape import deep_member, shape_reasons
+from ifccheck.rating.subject import Subject, Unrated
+from ifccheck.standards import Standard
+from ifccheck.subjects.concrete import Concrete, concrete_of
+from ifccheck.subjects.findings import Findings, Sources
+from ifccheck.subjects.steel import steel_of
+
+Row = TypeVar("Row", Load, Remark)
+
+_CRANE = "crane loads stand where the brief puts them: they are not moved, and carry no impact"
+NO_STATEMENT = BeamStatement()
+_THROUGH_THE_WEB = "loads are assumed to act through the web: torsion is not checked"
+
+
+@dataclass(frozen=True, slots=True)
+class Gathered:
+    """All beams of one model, ready to be rated or known not to be."""
+
+    subjects: tuple[Subject, ...]
+    unrated: tuple[Unrated, ...]
+    loads: tuple[Load, ...]
+    """On every beam, rated or not"""
+
+
+def gather(model: Model, brief: Brief, matches: Matches, standard: Standard) -> Gathered:
+    """Gather everything that the rating of each beam of a model rests on."""
+    beams = {beam.key: beam for beam in model.beams}
+    contacts = contacts_of(model, stated_ends(brief, matches))
+    supports, remarks = resolve_supports(brief, matches, beams, contacts)
+    sources = Sources(
+        brief=brief,
+        standard=standard,
+        contacts=contacts,
+        unmeasured=model.unmeasured,
+        statements=statements(brief, matches),
+        materials=materials(brief, matches),
+        defaults=default_materials(brief),
+        supports=supports,
+        support_remarks=_by_beam(remarks),
+        slabs=Slabs(model.beams, model.slabs, model.members),
+        unit_weight=Given(brief.basis.concrete_unit_weight, "brief, basis.concrete_unit_weight"),
+        crane_cases={case.name for case in brief.cases if case.nature == "crane"},
+        permanent_cases={case.name for case in brief.cases if case.nature == "permanent"},
+    )
+    standing = {
+        key: stand_alone(beams[key], pair, contacts.get(key, ()), _stated_span(sources, key))
+        for key, pair in supports.items()
+        if not isinstance(pair, Reason) and beams[key].axis
+    }
+    spans = {key: each.span for key, each in standing.items()}
+    loads = loads_on_beams(brief, matches, beams, spans, contacts)
+    of_beam = _by_beam(loads)
+    found = [
+        _one(beam, sources, standing.get(beam.key), of_beam.get(beam.key, ()))
+        for beam in model.beams
+    ]
+    return Gathered(
+        subjects=tuple(each for each in found if isinstance(each, Subject)),
+        unrated=tuple(each for each in found if isinstance(each, Unrated)),
+        loads=loads,
+    )
+
+
+def _by_beam(rows: Sequence[Row]) -> dict[str, list[Row]]:
+    grouped: dict[str, list[Row]] = {}
+    for row in rows:
+        if row.beam is not None:
+            grouped.setdefault(row.beam, []).append(row)
+    return grouped
+
+
+def _stated_span(sources: Sources, key: str) -> Given | None:
+    statement = sources.statements.get(key)
+    return statement.span if statement else None
+
+
+def _one(
+    beam: Beam, sources: Sources, standing: Standing | None, loads: Sequence[Load]
+) -> Subject | Unrated:
+    findings = Findings(beam.key, list(beam.reasons), list(beam.remarks))
+    statement = sources.statements.get(beam.key, NO_STATEMENT)
+    stated = _stated(statement)
+    contacts = sources.contacts.get(beam.key, ())
+    findings.remarks += [*sources.support_remarks.get(beam.key, ()), *statement.remarks]
+    findings.remarks += [
+        Remark(beam.key, "brief", f"the engineer states: {text}", "assumption") for text in stated
+    ]
+    concrete = concrete_of(beam, sources, findings)
+    _judge_standing(beam, sources, statement, standing, findings)
+    steel = steel_of(beam, sources, findings) if beam.runs else None
+    _judge_loads(beam, sources, statement, standing, loads, findings)
+    net = Net()
+    if standing and steel:
+        slab = counted(beam, _asked(beam, sources, statement, concrete), loads)
+        net = net_of(beam, standing, loads, steel, slab)
+        rated = net.body.runs if net.body else beam.runs
+        findings.reasons += deep_member(rated, standing.faces, sources.standard)
+    findings.take(net)
+    if standing is None or steel is None or any(reason.blocking for reason in findings.reasons):
+        return Unrated(beam, _distinct(findings.reasons), tuple(findings.remarks))
+    return Subject(
+        beam=beam,
+        line=standing.line,
+        faces=standing.faces,
+        span_source=standing.source,
+        direct=pressed_ends(contacts),
+        side_loaded=loaded_from_side(contacts, beam.length, standing.bearings),
+        statements=stated,
+        bars=steel.bars,
+        stirrups=steel.stirrups,
+        stirrups_known=steel.stirrups_known,
+        silent=steel.silent,
+        reinforcement_source=steel.source,
+        loads=tuple(loads),
+        concrete_strength=concrete.strength,
+        unit_weight=concrete.unit_weight,
+        density_factor=concrete.density_factor,
+        aggregate_size=concrete.aggregate_size,
+        bar_yield=steel.bar_yield,
+        stirrup_yield=steel.stirrup_yield,
+        reasons=_distinct(findings.reasons),
+        remarks=tuple(findings.remarks),
+        body=net.body,
+    )
+
+
+def _judge_standing(
+    beam: Beam,
+    sources: Sources,
+    statement: BeamStatement,
+    standing: Standing | None,
+    findings: Findings,
+) -> None:
+    """Note every doubt about how the beam stands."""
+    if standing is None and beam.axis:
+        unknown = sources.supports[beam.key]
+        findings.refuse(unknown.text if isinstance(unknown, Reason) else "supports unknown")
+    elif standing is not None:
+        supports = (standing.span.start_support, standing.span.end_support)
+        overhang = span_reason(statement, beam, supports)
+        findings.reasons += [overhang] if overhang else standing.reasons
+        findings.remarks += standing.remarks
+        findings.reasons += shape_reasons(
+            beam.runs, standing.span, standing.faces, sources.standard
+        )
+
+
+def _asked(beam: Beam, sources: Sources, statement: BeamStatement, concrete: Concrete) -> Asked:
+    """What the brief lets count of the slabs that meet a beam."""
+    wanted, source = slab_flange(sources.brief, statement)
+    return Asked(
+        near=sources.slabs.names_near(beam),
+        meeting=NO_MEETING if wanted == "none" else sources.slabs.meeting(beam),
+        wanted=wanted,
+        source=source,
+        strength=concrete.strength.value,
+        unit_weight=concrete.unit_weight.value,
+        permanent=sources.permanent_cases,
+    )
+
+
+def _distinct(reasons: Sequence[Reason]) -> tuple[Reason, ...]:
+    return tuple({reason.text: reason for reason in reasons}.values())
+
+
+def _stated(statement: BeamStatement) -> tuple[str, ...]:
+    """What the engineer stated that overrules a doubt: it must be seen."""
+    found = []
+    if statement.unloaded:
+        found.append("unloaded = true: self weight alone is meant")
+    if statement.loads_complete:
+        found.append("loads_complete = true: what rests on the beam is in the loads given")
+    return tuple(found)
+
+
+def _judge_loads(
+    beam: Beam,
+    sources: Sources,
+    statement: BeamStatement,
+    standing: Standing | None,
+    loads: Sequence[Load],
+    findings: Findings,
+) -> None:
+    """Note every doubt about what acts on the beam."""
+    if not loads and not statement.unloaded:
+        findings.refuse("no load assigned", blocking=False)
+    hung = sorted({load.origin for load in loads if load.face == "bottom"})
+    if hung:
+        places = ", ".join(hung)
+        findings.refuse(f"hung load: hanger steel is not checked ({places})", blocking=False)
+    if statement.torsion:
+        findings.refuse("torsion: it is not checked", blocking=False)
+    else:
+        findings.remarks.append(Remark(beam.key, "demand", _THROUGH_THE_WEB, "assumption"))
+    if sources.crane_cases and any(load.case in sources.crane_cases for load in loads):
+        findings.remarks.append(Remark(beam.key, "demand", _CRANE, "assumption"))
+    if standing and not statement.loads_complete:
+        contacts = sources.contacts.get(beam.key, ())
+        findings.reasons += unknown_reactions(beam, contacts, standing, sources.unmeasured)

@@ -1,0 +1,105 @@
+"""The reinforcement of a beam, by the first source that speaks of it."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from typing import NamedTuple
+
+from ifccheck.beam import Bars, Beam, Face, Given, Reinforcement, Remark, Stirrups
+from ifccheck.brief.statements import MaterialStatement
+from ifccheck.detailing import Layout, choose_source, lay_out
+from ifccheck.subjects.findings import NO_MATERIAL, Findings, Sources
+
+_LAYOUT_AGGREGATE = 20.0
+
+
+class Steel(NamedTuple):
+    """The reinforcement that a beam is rated with."""
+
+    bars: tuple[Bars, ...]
+    stirrups: tuple[Stirrups, ...]
+    stirrups_known: bool
+    source: str
+    bar_yield: tuple[Given, ...]
+    stirrup_yield: tuple[Given, ...]
+    silent: tuple[Face, ...]
+
+
+def steel_of(beam: Beam, sources: Sources, findings: Findings) -> Steel | None:
+    """Return the reinforcement of a beam; None where no source speaks of it."""
+    stated = sources.materials.get(beam.key, NO_MATERIAL)
+    chosen = choose_source(beam, sources.brief.sources)
+    findings.remarks += chosen.remarks
+    findings.reasons += chosen.reasons
+    if chosen.reinforcement is None:
+        return None
+    placed = _placed(beam, chosen.reinforcement, sources, stated, findings)
+    defaults = sources.defaults
+    return Steel(
+        bars=placed.bars,
+        stirrups=placed.stirrups,
+        stirrups_known=placed.stirrups_known,
+        source=chosen.reinforcement.source,
+        bar_yield=_yields(placed.bars, stated.bar_yield, defaults.bar_yield, "bars", findings),
+        stirrup_yield=_yields(
+            placed.stirrups, stated.stirrup_yield, defaults.stirrup_yield, "stirrups", findings
+        ),
+        silent=placed.silent,
+    )
+
+
+def _placed(
+    beam: Beam,
+    reinforcement: Reinforcement,
+    sources: Sources,
+    stated: MaterialStatement,
+    findings: Findings,
+) -> Layout:
+    """Bars and stirrups by place: as modelled, or laid out from a description."""
+    if not reinforcement.zones:
+        if reinforcement.bars and not reinforcement.stirrups:
+            text = "no stirrups are modelled: none are counted on"
+            findings.remarks.append(Remark(beam.key, "reinforcement", text, "doubt"))
+        return Layout(reinforcement.bars, reinforcement.stirrups)
+    size = _aggregate_for_layout(stated, sources, findings)
+    laid = lay_out(
+        beam,
+        reinforcement.zones,
+        clear_spacing=lambda diameter: sources.standard.clear_spacing(diameter, size),
+        stated_cover=stated.cover,
+        fallback_cover=beam.cover or sources.defaults.cover,
+    )
+    findings.remarks += laid.remarks
+    findings.reasons += laid.reasons
+    return laid
+
+
+def _aggregate_for_layout(stated: MaterialStatement, sources: Sources, findings: Findings) -> float:
+    size = stated.aggregate_size or sources.defaults.aggregate_size
+    if size is not None:
+        return size.value
+    text = f"bars laid out for aggregate of {_LAYOUT_AGGREGATE:g} mm: the brief gives no size"
+    findings.remarks.append(Remark(findings.key, "reinforcement", text, "assumption"))
+    return _LAYOUT_AGGREGATE
+
+
+def _yields(
+    steel: Sequence[Bars | Stirrups],
+    stated: Given | None,
+    default: Given | None,
+    what: str,
+    findings: Findings,
+) -> tuple[Given, ...]:
+    """Yield strength of each set: the brief's statement, the model's, the brief's default."""
+    given = [each for bar in steel if (each := stated or bar.yield_strength or default)]
+    if len(given) < len(steel):
+        findings.refuse(yield_unknown(what))
+        return ()
+    for assumed in dict.fromkeys([each for each in given if each.assumed]):
+        findings.assume(f"yield strength of the {what}", assumed)
+    return tuple(given)
+
+
+def yield_unknown(what: str) -> str:
+    """Return the reason for which bars, or stirrups, without a known yield are not rated."""
+    return f"yield strength of the {what} unknown: neither model nor brief gives one"
