@@ -385,7 +385,7 @@ def test_a_concentrated_load_near_an_opening(gap: float) -> None:
 
 
 def test_short_line_loads_are_concentrated() -> None:
-    load = replace(line("press", 20.0), start=2200.0, end=2700.0)
+    load = line("press", 20.0)._replace(start=2200.0, end=2700.0)
     assert "a concentrated load" in texts(with_openings(subject(loads=(load,)), hole(2000.0)))
 
 
@@ -479,7 +479,7 @@ def test_self_weight_is_that_of_the_whole_body() -> None:
     [
         subject(loads=(line("floor", -2.0),)),
         subject(ends=("fixed", "pinned"), loads=(line("floor", 2.0),)),
-        subject(loads=(replace(point("floor", 1e6, 5800.0), kind="moment"),)),
+        subject(loads=(point("floor", 1e6, 5800.0)._replace(kind="moment"),)),
     ],
     ids=["upward", "fixed", "moment"],
 )

@@ -396,7 +396,7 @@ def test_slabs_near_are_named_by_their_boxes() -> None:
 @pytest.mark.parametrize(("intensity", "light"), [(10.0, True), (10.5, False)])
 def test_permanent_loads_must_be_able_to_hold_the_slab(intensity: float, light: bool) -> None:
     """2850 x 150 mm at 24 kN/m3: 10.26 kN/m."""
-    loads = (replace(line("floor", intensity), case="dead"), line("press", 50.0))
+    loads = (line("floor", intensity)._replace(case="dead"), line("press", 50.0))
     found = counted(made_beam(), asked(met(made_slab())), loads)
     doubts = [remark.text for remark in found.remarks if remark.kind == "doubt"]
     assert len(doubts) == light
