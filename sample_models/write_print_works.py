@@ -107,6 +107,33 @@ class PrintWorks:
         w.contained[storey].append(column)
         w.materials["Concrete C35 in situ"].append(column)
 
+    def slab(self, name: str, storey: str, ring: Profile, soffit: float, thickness: float) -> None:
+        """Write a level slab of a ring in plan."""
+        w = self.writer
+        solid = w.extrusion(w.polygon(ring), (0, 0, 0), (0, 0, 1), (1, 0, 0), thickness)
+        placement = w.placement(w.storeys[storey].ObjectPlacement, (0.0, 0.0, soffit))
+        slab = w.rooted(
+            "IfcSlab", name, Name=name, ObjectPlacement=placement, Representation=w.shape([solid])
+        )
+        slab.PredefinedType = "FLOOR"
+        w.contained[storey].append(slab)
+        w.materials["Concrete C35 in situ"].append(slab)
+
+    def opening(self, beam: Any, name: str, x: float, z: float, size: tuple[float, float]) -> None:
+        """Write an opening right across a beam: its start and soffit, its length and height."""
+        w, (length, height) = self.writer, size
+        solid = w.extrusion(
+            w.rectangle(length, 2000.0), (x + length / 2, 0, z), (0, 0, 1), (1, 0, 0), height
+        )
+        opening = w.rooted(
+            "IfcOpeningElement", name, Name=name, Representation=w.shape([solid]),
+            ObjectPlacement=w.placement(beam.ObjectPlacement),
+        )  # fmt: skip
+        w.rooted(
+            "IfcRelVoidsElement", f"{name} void", RelatingBuildingElement=beam,
+            RelatedOpeningElement=opening,
+        )  # fmt: skip
+
     # Beams -------------------------------------------------------------------------------------
 
     def element(self, mark: str, place: Place, shape: Any, material: str, kind: str = "IfcBeam",
@@ -124,7 +151,7 @@ class PrintWorks:
             ObjectPlacement=placement,
             Representation=shape,
         )
-        if w.schema != "IFC2X3":
+        if w.schema != "IFC2X3" and kind == "IfcBeam":
             beam.PredefinedType = "BEAM"
         w.contained[place.storey].append(beam)
         w.materials[material].append(beam)
@@ -464,6 +491,47 @@ def write_paper_store(works: PrintWorks) -> None:
             works.notation(beam, mark, "2-15M", "3-20M", stirrups)
 
 
+def write_plant_deck(works: PrintWorks) -> None:
+    """Beams under the plant deck: openings, haunches, a dapped end, slab as flange, a proxy."""
+    for number in range(6):
+        mark, y = f"Q-{601 + number}", -12000.0 - 2500.0 * number
+        for x in (10150.0, 15850.0):
+            head = -350.0 if number == 3 and x > 15000.0 else -600.0
+            works.column(f"C-Q{number + 1} at {x:.0f}", LEVEL_1, (x, y), 300.0, -4500.0, head)
+        place = Place(LEVEL_1, (10000.0, y, -600.0))
+        beam = write_deck_beam(works, mark, number, place)
+        layers = rectangle_bars(300.0, 600.0, 6000.0, (3, "25M"), (2, "20M"), -COVER)
+        zones = rectangle_zones(300.0, 600.0, [("10M", 200.0, 100.0, 5900.0)])
+        if number in (2, 3):
+            works.notation(beam, mark, "2-20M", "4-25M", "10M @ 200 2 legs")
+        else:
+            works.bars(beam, mark, layers, zones)
+    plate: Profile = [(10000, -24500), (16000, -24500), (16000, -20500), (10000, -20500)]
+    works.slab("SL-Q5", LEVEL_1, [*plate[:2], (16000, -22150), (10000, -22150)], -150.0, 150.0)
+    works.slab("SL-Q6", LEVEL_1, [(10000, -21850), (16000, -21850), *plate[2:]], -150.0, 150.0)
+
+
+def write_deck_beam(works: PrintWorks, mark: str, number: int, place: Place) -> Any:
+    """Write one body of the plant deck."""
+    w = works.writer
+    haunched: Profile = [(0, 0), (1500, 200), (4500, 200), (6000, 0), (6000, 600), (0, 600)]
+    dapped: Profile = [(0, 0), (5600, 0), (5600, 250), (6000, 250), (6000, 600), (0, 600)]
+    if number in (2, 3):
+        side = w.polygon(haunched if number == 2 else dapped)
+        solid = w.extrusion(side, (0, 150, 0), (0, -1, 0), (1, 0, 0), 300.0)
+        return works.element(mark, place, w.shape([solid]), "Concrete C35 in situ")
+    if number == 5:
+        solid = works.prism(w.rectangle(300.0, 600.0), 6000.0, 300.0)
+        shape = w.shape([solid])
+        return works.element(mark, place, shape, "Concrete C35 in situ", "IfcBuildingElementProxy")
+    beam = works.rectangular(mark, place, 300.0, 600.0, 6000.0)
+    if number == 0:
+        works.opening(beam, f"{mark} pipe", 2600.0, 240.0, (140.0, 140.0))
+    elif number == 1:
+        works.opening(beam, f"{mark} duct", 1400.0, 180.0, (650.0, 260.0))
+    return beam
+
+
 def faceted_box(w: Writer, length: float, width: float, depth: float) -> Any:
     """Make a box as a faceted boundary representation."""
     corner = [
@@ -497,7 +565,7 @@ def write_print_works(schema: str) -> bytes:
     """The whole building as the bytes of an IFC file."""
     works = PrintWorks(schema)
     for write in (write_columns, write_girders, write_floor, write_dock, write_runway, write_roof,
-                  write_annex, write_paper_store, write_others):  # fmt: skip
+                  write_annex, write_paper_store, write_plant_deck, write_others):  # fmt: skip
         write(works)
     works.writer.finish()
     text: str = works.writer.file.to_string()
