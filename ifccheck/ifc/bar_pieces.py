@@ -123,7 +123,20 @@ def cut_into_pieces(lines: CentreLines) -> Pieces:
     steps = make_pieces(
         lines.row[index], lines.points[index], lines.points[index + 1], ~lines.arc[index]
     )
-    return steps.merged(~_goes_on(steps, COLLINEAR))
+    return steps.merged(_without_drift(steps, ~_goes_on(steps, COLLINEAR)))
+
+
+def _without_drift(steps: Pieces, begins: Bools) -> Bools:
+    """Begin a piece also where steps that each go on straight have turned too far together."""
+    while not begins.all():
+        first = np.flatnonzero(begins)[np.cumsum(begins) - 1]
+        on = np.flatnonzero(~begins)
+        turned = on[dots(steps.direction[on], steps.direction[first[on]]) < COLLINEAR]
+        if not len(turned):
+            break
+        _, earliest = np.unique(first[turned], return_index=True)
+        begins[turned[earliest]] = True
+    return begins
 
 
 def _goes_on(pieces: Pieces, cosine: float) -> Bools:

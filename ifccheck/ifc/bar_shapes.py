@@ -8,7 +8,8 @@ from typing import Any
 
 import numpy as np
 
-from ifccheck.ifc.bar_paths import Path, read_path, read_swept_path, rounded
+from ifccheck.ifc.bar_curves import read_path, read_swept_path
+from ifccheck.ifc.bar_paths import Path, rounded
 from ifccheck.ifc.entity import Entity, UnreadableError, get
 from ifccheck.ifc.placements import IDENTITY, Matrix, Placements, unit
 from ifccheck.ifc.units import ModelUnits
@@ -106,6 +107,8 @@ class BarShapes:
         kind = item.is_a()
         if kind in ("IfcSweptDiskSolid", "IfcSweptDiskSolidPolygonal"):
             argument = item.get_argument
+            if argument(2):
+                raise UnreadableError("is hollow, which is not read")
             path = read_swept_path(argument(0), argument(3), argument(4), self._units)
             if kind == "IfcSweptDiskSolidPolygonal" and argument(5):
                 path = rounded(path, argument(5) * self._units.length)

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import math
 from collections.abc import Sequence
+from dataclasses import dataclass
 from itertools import pairwise
 
 import numpy as np
@@ -16,11 +17,28 @@ SAGITTA = 0.1
 MOST_POINTS = 4096
 
 
-def spline_points(curve: Entity, scale: float, dimensions: int = 2) -> Matrix:
-    """Return points along an IfcBSplineCurveWithKnots, both ends included [mm] (N, dimensions).
+@dataclass(frozen=True, slots=True)
+class Spline:
+    """A B-spline curve, rational or not."""
 
-    By de Boor's recursion, as many in each span between knots as it takes for no chord to lie
-    further from the curve than SAGITTA.
+    poles: Matrix
+    """Control points times their weights, and the weights [mm] (N, dimensions + 1)."""
+    knots: Matrix
+    degree: int
+
+    def breaks(self) -> list[float]:
+        """The parameters at which one polynomial ends and the next begins, and both ends."""
+        spans: list[float] = np.unique(self.knots[self.degree : len(self.poles) + 1]).tolist()
+        return spans
+
+    def at(self, place: float) -> Matrix:
+        """The point at a parameter [mm]."""
+        point = _at(self.poles, self.knots, self.degree, place)
+        return np.asarray(point[:-1] / point[-1])
+
+
+def read_spline(curve: Entity, scale: float, dimensions: int = 2) -> Spline:
+    """Read an IfcBSplineCurveWithKnots.
 
     Raises UnreadableError where its knots do not fit its control points.
     """
@@ -32,11 +50,22 @@ def spline_points(curve: Entity, scale: float, dimensions: int = 2) -> Matrix:
         raise UnreadableError(f"{label(curve)} has knots that do not fit its control points")
     if not (np.isfinite(poles).all() and (weights > 0.0).all() and (np.diff(knots) >= 0.0).all()):
         raise UnreadableError(f"{label(curve)} has weights or knots that make no curve")
-    weighed = np.column_stack([poles * weights[:, None], weights])
-    spans = np.unique(knots[degree : len(poles) + 1])
-    found = [_at(weighed, knots, degree, float(spans[0]))]
-    for low, high in pairwise(spans.tolist()):
-        found += _along(weighed, knots, degree, low, high)
+    return Spline(np.column_stack([poles * weights[:, None], weights]), knots, degree)
+
+
+def spline_points(curve: Entity, scale: float, dimensions: int = 2) -> Matrix:
+    """Return points along an IfcBSplineCurveWithKnots, both ends included [mm] (N, dimensions).
+
+    By de Boor's recursion, as many in each span between knots as it takes for no chord to lie
+    further from the curve than SAGITTA.
+
+    Raises UnreadableError where its knots do not fit its control points.
+    """
+    spline = read_spline(curve, scale, dimensions)
+    spans = spline.breaks()
+    found = [_at(spline.poles, spline.knots, spline.degree, spans[0])]
+    for low, high in pairwise(spans):
+        found += _along(spline.poles, spline.knots, spline.degree, low, high)
     homogeneous = np.array(found)
     return np.asarray(homogeneous[:, :-1] / homogeneous[:, -1:])
 

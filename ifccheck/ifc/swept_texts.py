@@ -6,7 +6,8 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from ifccheck.ifc.bar_paths import PARAMETER_TOLERANCE, Bools, Floats, Ints, arc_frames
+from ifccheck.ifc.bar_courses import PARAMETER_TOLERANCE
+from ifccheck.ifc.bar_paths import Bools, Floats, Ints, arc_frames
 from ifccheck.ifc.bar_samples import PathTable
 from ifccheck.ifc.bar_shapes import FARTHEST
 from ifccheck.ifc.many_vectors import sizes
