@@ -15,8 +15,9 @@ from ifccheck.ifc.bar_paths import Bools, Ints
 from ifccheck.ifc.equal_rows import first_of_each_number
 from ifccheck.ifc.relations import Relations
 
-Tie = Literal["part", "beside", "elsewhere", "loose"]
-"""Part of the beam, beside it in an assembly, part of something else, or tied to nothing."""
+Tie = Literal["part", "beside", "elsewhere", "unread", "loose"]
+"""Part of the beam, beside it in an assembly, part of something else, part of a beam that is out of
+scope or whose body is not read, or tied to nothing."""
 
 ASSEMBLY, BEAM = "IfcElementAssembly", "IfcBeam"
 
@@ -52,6 +53,7 @@ class BarHosts:
 
 LOOSE = Host("loose")
 ELSEWHERE = Host("elsewhere")
+UNREAD = Host("unread")
 
 
 class Hosts:
@@ -118,7 +120,7 @@ class Hosts:
             return above
         entity = self._file.by_id(whole)
         if entity.is_a(BEAM):
-            return LOOSE  # a beam out of scope, or one whose body is not read
+            return UNREAD
         if not entity.is_a(ASSEMBLY):
             return ELSEWHERE if entity.is_a("IfcElement") else LOOSE
         beside = sorted(self._beams.intersection(self._relations.descendants(whole)))
@@ -126,7 +128,7 @@ class Hosts:
 
 
 def _strongest(hosts: Sequence[Host]) -> Host:
-    for tie in ("part", "beside", "elsewhere"):
+    for tie in ("part", "beside", "elsewhere", "unread"):
         found = [host for host in hosts if host.tie == tie]
         if found:
             beams = dict.fromkeys(beam for host in found for beam in host.beams)

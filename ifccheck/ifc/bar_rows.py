@@ -1,4 +1,4 @@
-"""Which strand is looked at in which beam: by relations, and by place where they leave it open."""
+"""Strands of bars, each looked at in the axes of one beam."""
 
 from __future__ import annotations
 
@@ -7,25 +7,13 @@ from dataclasses import dataclass
 import numpy as np
 import numpy.typing as npt
 
-from ifccheck.ifc.bar_hosts import BarHosts, Tie
 from ifccheck.ifc.bar_paths import Bools, Floats, Ints
-from ifccheck.ifc.bar_pieces import CentreLines, cut_into_pieces, place
-from ifccheck.ifc.bar_samples import Samples, offsets, sample, spread
+from ifccheck.ifc.bar_pieces import CentreLines, place
+from ifccheck.ifc.bar_samples import Samples, sample
 from ifccheck.ifc.bar_table import BarTable
-from ifccheck.ifc.beam_frames import BeamFrames, part_inside
+from ifccheck.ifc.beam_frames import BeamFrames
 from ifccheck.ifc.equal_rows import first_of_each, first_of_each_number
 
-INSIDE_TOLERANCE = 5.0
-"""A bar may lie outside the box of its beam by this [mm] and still lie in it."""
-INSIDE_SHARE = 0.5
-"""Part of its length from which on a bar lies in a beam."""
-NOTICED_RUN, NOTICED_LENGTH = 20.0, 300.0
-"""A bar that no relation ties is noticed in a beam from this many diameters and this length [mm]
-along it, however far it goes on."""
-
-
-MOST_TOLD = 8
-"""A bar that lies in none of the beams of its assembly is told to no more beams than this."""
 ROTATION_STEPS, PLACE_STEPS = 1e7, 1e4
 """Steps per unit of a rotation and per mm within which strands are alike."""
 
@@ -43,18 +31,6 @@ class Rows:
 
 
 NO_ROWS = Rows(np.zeros(0, dtype=np.intp), np.zeros(0, dtype=np.intp))
-
-
-@dataclass(frozen=True, slots=True)
-class Found:
-    """Strands by beam."""
-
-    tied: Rows
-    """Bars of the beam."""
-    astray: Rows
-    """Beside the beam in its assembly, but in none of the beams there."""
-    loose: Rows
-    """In the beam, but tied to nothing."""
 
 
 class BarPlaces:
@@ -128,110 +104,3 @@ class BarPlaces:
 def _in_steps(*columns: Floats) -> npt.NDArray[np.int64]:
     """Columns rounded to whole numbers, side by side."""
     return np.column_stack([np.rint(column).astype(np.int64) for column in columns])
-
-
-def find_rows(places: BarPlaces, hosts: BarHosts) -> Found:
-    """Find the beams of all strands; ``hosts`` of the bars of the table."""
-    hosts = hosts.take(places.table.bar)
-    tied = _candidates(places, hosts, "part")
-    beside, astray = _beside(places, hosts)
-    strand, beam = (
-        np.concatenate(pair) for pair in ((tied.strand, beside.strand), (tied.beam, beside.beam))
-    )
-    return Found(Rows(strand, beam), astray, _noticed(places, hosts))
-
-
-def _candidates(places: BarPlaces, hosts: BarHosts, tie: Tie, most: int | None = None) -> Rows:
-    """Strands of one tie with each of their beams, those with more than ``most`` left out."""
-    index = places.frames.index()
-    count = np.array([len(host.beams) for host in hosts.hosts], dtype=np.intp)
-    beams = np.array([index[beam] for host in hosts.hosts for beam in host.beams], dtype=np.intp)
-    chosen = np.flatnonzero(hosts.tied(tie))
-    if most is not None:
-        chosen = chosen[count[hosts.number[chosen]] <= most]
-    host = hosts.number[chosen]
-    row, within = spread(count[host])
-    return Rows(chosen[row], beams[offsets(count)[host[row]] + within])
-
-
-def _beside(places: BarPlaces, hosts: BarHosts) -> tuple[Rows, Rows]:
-    """Of the beams beside each strand the one that holds most of it, and strands in none.
-
-    Where an assembly holds many beams, a strand in none of them is nothing to tell each of them.
-    """
-    strands = np.flatnonzero(hosts.tied("beside"))
-    if not len(strands):
-        return NO_ROWS, NO_ROWS
-    index = places.frames.index()
-    near = _overlapping(places, strands)
-    own = [
-        beam in {index[one] for one in hosts.of(strand).beams}
-        for strand, beam in zip(near.strand.tolist(), near.beam.tolist(), strict=True)
-    ]
-    held = _fullest(places, near.take(np.array(own, dtype=bool)))
-    listed = _candidates(places, hosts, "beside", MOST_TOLD)
-    return held, listed.take(~np.isin(listed.strand, held.strand))
-
-
-def _inside(places: BarPlaces, rows: Rows) -> tuple[Floats, Floats]:
-    """Part of each row's length that lies in its beam, and how far that runs along it [mm]."""
-    if not len(rows.strand):
-        return np.zeros(0), np.zeros(0)
-    pieces = cut_into_pieces(places.centre_lines(rows))
-    low, high = places.frames.boxes()
-    beam = rows.beam[pieces.row]
-    enter, leave = part_inside(
-        pieces.start, pieces.end, low[beam] - INSIDE_TOLERANCE, high[beam] + INSIDE_TOLERANCE
-    )
-    inside = (leave - enter) * pieces.length
-    count = len(rows.strand)
-    total = np.bincount(pieces.row, pieces.length, count)
-    along = np.bincount(pieces.row, inside * np.abs(pieces.direction[:, 0]), count)
-    held = np.bincount(pieces.row, inside, count)
-    return np.asarray(held / np.maximum(total, 1e-9)), np.asarray(along, dtype=float)
-
-
-def _fullest(places: BarPlaces, rows: Rows) -> Rows:
-    """For each strand the beam that holds most of it, where one holds half of it."""
-    share, _ = _inside(places, rows)
-    order = np.lexsort((rows.beam, -share, rows.strand))
-    best = np.ones(len(order), dtype=bool)
-    best[1:] = np.diff(rows.strand[order]) != 0
-    first = order[best]
-    return rows.take(first[share[first] >= INSIDE_SHARE])
-
-
-def _noticed(places: BarPlaces, hosts: BarHosts) -> Rows:
-    strands = np.flatnonzero(hosts.tied("loose"))
-    if not len(strands):
-        return NO_ROWS
-    rows = _overlapping(places, strands)
-    share, along = _inside(places, rows)
-    least = np.maximum(NOTICED_RUN * places.diameter[rows.strand], NOTICED_LENGTH)
-    return rows.take((share >= INSIDE_SHARE) | (along >= least))
-
-
-def _overlapping(places: BarPlaces, strands: Ints) -> Rows:
-    """Pairs of strands and beams whose upright boxes in the building overlap."""
-    lines = places.world_lines(strands)
-    order = np.argsort(lines.lowest()[:, 0], kind="stable")
-    low, high = lines.lowest()[order], lines.highest()[order]
-    longest = float((high[:, 0] - low[:, 0]).max())
-    beam_low, beam_high = _upright_boxes(places.frames)
-    begin = np.searchsorted(low[:, 0], beam_low[:, 0] - longest)
-    stop = np.searchsorted(low[:, 0], beam_high[:, 0], side="right")
-    found: list[Ints] = []
-    for beam, (first, last) in enumerate(zip(begin.tolist(), stop.tolist(), strict=True)):
-        near = (low[first:last] <= beam_high[beam]) & (high[first:last] >= beam_low[beam])
-        hit = order[first + np.flatnonzero(near.all(axis=1))]
-        found.append(np.stack([strands[hit], np.full(len(hit), beam)], axis=1))
-    pairs = np.concatenate(found).astype(np.intp) if found else np.zeros((0, 2), dtype=np.intp)
-    return Rows(pairs[:, 0], pairs[:, 1])
-
-
-def _upright_boxes(frames: BeamFrames) -> tuple[Floats, Floats]:
-    low, high = frames.boxes()
-    middle, half = (low + high) / 2.0, (high - low) / 2.0 + INSIDE_TOLERANCE
-    centre = frames.origin + np.einsum("bij,bi->bj", frames.rotation, middle)
-    reach = np.einsum("bij,bi->bj", np.abs(frames.rotation), half)
-    return centre - reach, centre + reach

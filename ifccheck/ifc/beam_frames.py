@@ -36,6 +36,8 @@ class BeamFrames:
     end_bounds: Floats
     outlines: Sequence[Outline]
     """At the start of each run (K)."""
+    end_outlines: Sequence[Outline]
+    """At its end (K)."""
     tapers: Bools
     """Whether each run has another outline at its end (K)."""
     fills_box: Bools
@@ -87,6 +89,7 @@ def make_frames(hosts: Mapping[int, BeamFrame]) -> BeamFrames:
     runs = [run for frame in frames for run in frame.runs]
     counts = [len(frame.runs) for frame in frames]
     outlines = [run.outline for run in runs]
+    end_outlines = [run.outline_end or run.outline for run in runs]
     bounds = _bounds(outlines)
     return BeamFrames(
         ids=list(hosts),
@@ -97,8 +100,9 @@ def make_frames(hosts: Mapping[int, BeamFrame]) -> BeamFrames:
         run_start=np.array([run.start for run in runs], dtype=float),
         run_end=np.array([run.end for run in runs], dtype=float),
         bounds=bounds,
-        end_bounds=_bounds([run.outline_end or run.outline for run in runs]),
+        end_bounds=_bounds(end_outlines),
         outlines=outlines,
+        end_outlines=end_outlines,
         tapers=np.array([run.outline_end is not None for run in runs], dtype=bool),
         fills_box=_fill_boxes(outlines, bounds),
     )

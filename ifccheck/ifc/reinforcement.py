@@ -11,8 +11,9 @@ from ifccheck.beam import Reason, Reinforcement, Remark
 from ifccheck.ifc.bar_findings import Findings
 from ifccheck.ifc.bar_hosts import BarHosts, Hosts
 from ifccheck.ifc.bar_paths import Ints
-from ifccheck.ifc.bar_rows import BarPlaces, Rows, find_rows
+from ifccheck.ifc.bar_rows import BarPlaces, Rows
 from ifccheck.ifc.bar_table import BarTable, gather_bars
+from ifccheck.ifc.bar_ties import Found, find_rows
 from ifccheck.ifc.beam_frames import BeamFrames, make_frames
 from ifccheck.ifc.context import BeamFrame, Context
 from ifccheck.ifc.described import read_described
@@ -85,8 +86,9 @@ def _physical(
     _tell_unreadable(table, bars, ties, frames, findings)
     _tell_astray(places, found.astray, findings)
     physical = reduce_bars(places, found.tied, findings)
-    _tell_without_main_bars(found.tied, physical, findings)
-    _tell_loose(places, found.loose, findings)
+    spoken_for = {row for row, step_id in enumerate(frames.ids) if step_id in described}
+    _tell_without_main_bars(found, physical, findings, spoken_for)
+    _tell_by_place(places, found, findings)
     return _collected(frames, physical, findings, described)
 
 
@@ -145,19 +147,31 @@ def _tell_astray(places: BarPlaces, astray: Rows, findings: Findings) -> None:
             findings.remark(beam, text, bar)
 
 
-def _tell_without_main_bars(tied: Rows, physical: Physical, findings: Findings) -> None:
-    for beam in np.unique(tied.beam).tolist():
+def _tell_without_main_bars(
+    found: Found, physical: Physical, findings: Findings, described: Collection[int]
+) -> None:
+    """Beams with bars of which none runs along them; ``described``: what is said of those."""
+    of_relations = np.ones(len(found.tied.beam), dtype=bool)
+    of_relations[len(of_relations) - len(found.by_place.beam) :] = False
+    for beam in np.unique(found.tied.beam[of_relations]).tolist():
         if beam not in physical.bars:
             findings.reason(beam, "no longitudinal bar is among the bars that the model ties to it")
+    for beam in np.unique(found.by_place.beam).tolist():
+        if beam not in physical.bars and beam not in described and not findings.reasons(beam):
+            findings.reason(beam, "no longitudinal bar is among the bars that lie in it")
 
 
-def _tell_loose(places: BarPlaces, loose: Rows, findings: Findings) -> None:
-    for strand, beam in zip(loose.strand.tolist(), loose.beam.tolist(), strict=True):
-        findings.remark(
-            beam,
-            "lies in the beam, but no relation ties it to it: not counted",
-            (places.label(strand),),
-        )
+def _tell_by_place(places: BarPlaces, found: Found, findings: Findings) -> None:
+    """Bars that lie in beams, and that no relation ties to one."""
+    place = "lies in the beam, and no relation ties it to any member: found by its place"
+    loose = "lies in the beam, but no relation ties it to it: not counted"
+    for rows, text in ((found.by_place, place), (found.loose, loose)):
+        for strand, beam in zip(rows.strand.tolist(), rows.beam.tolist(), strict=True):
+            findings.remark(beam, text, (places.label(strand),))
+    contested = "lies in it and in another beam alike, and no relation tells whose it is"
+    rows = found.contested
+    for strand, beam in zip(rows.strand.tolist(), rows.beam.tolist(), strict=True):
+        findings.reason(beam, contested, (places.label(strand),))
 
 
 def _collected(

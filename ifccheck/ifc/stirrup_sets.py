@@ -78,8 +78,7 @@ def find_ties(
 ) -> tuple[Ties, Legs]:
     """Find the legs of bars that lie square; soffit and height of the section at each (R)."""
     closed = is_closed(lines, pieces)
-    anchored = closed[pieces.row] | ((pieces.neighbour(-1) >= 0) & (pieces.neighbour(1) >= 0))
-    upright = pieces.straight & (np.abs(pieces.direction[:, 2]) >= UPRIGHT) & anchored
+    upright = upright_legs(pieces, closed)
     low, high = lines.lowest(), lines.highest()
     middle = (low[:, 0] + high[:, 0]) / 2.0
     legs = find_legs(pieces, upright, middle, soffit, height)
@@ -96,6 +95,12 @@ def find_ties(
         top=soffit + height,
     )
     return ties, legs
+
+
+def upright_legs(pieces: Pieces, closed: Bools) -> Bools:
+    """Whether each piece is upright and held at both ends: it goes on there (P)."""
+    held = closed[pieces.row] | ((pieces.neighbour(-1) >= 0) & (pieces.neighbour(1) >= 0))
+    return np.asarray(pieces.straight & (np.abs(pieces.direction[:, 2]) >= UPRIGHT) & held)
 
 
 def is_closed(lines: CentreLines, pieces: Pieces) -> Bools:
