@@ -201,6 +201,18 @@ class StirrupGroup:
 
 
 @dataclass(frozen=True, slots=True)
+class BarRow:
+    """Bars given by number and by the height of their centres, not by their places across."""
+
+    face: Face
+    group: BarGroup
+    z: float
+    """Height of the bar centres [mm]"""
+    bar_yield: float | None = None
+    origin: str = ""
+
+
+@dataclass(frozen=True, slots=True)
 class DescribedZone:
     """Reinforcement of a stretch of a beam given by notation, not by place.
 
@@ -220,6 +232,8 @@ class DescribedZone:
     bar_yield: float | None = None
     stirrup_yield: float | None = None
     origin: str = ""
+    rows: tuple[BarRow, ...] = ()
+    """Bars whose height is given; they say nothing of a face that none of them lies at."""
 
 
 @dataclass(frozen=True, slots=True)

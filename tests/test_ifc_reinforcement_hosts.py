@@ -190,7 +190,7 @@ def test_reinforcement_by_sections_is_not_lost_in_silence(made: Model) -> None:
     )
     found = model.read(beam)
     assert [source.source for source in found.sources] == ["sections"]
-    assert "not read yet" in found.reasons
+    assert "has no EffectiveDepth" in found.reasons
 
 
 def test_the_order_of_entities_changes_nothing() -> None:

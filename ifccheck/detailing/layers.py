@@ -96,7 +96,7 @@ def _layers(
         if level + greatest > top - bottom - 2.0 * space.inset:
             raise NoRoomError(f"{len(diameters)} bars do not fit: {len(rest)} are left over")
         stretch = room(level, greatest)
-        count = _fitting([diameters[bar] for bar in rest], stretch, space.clear_spacing)
+        count = fitting([diameters[bar] for bar in rest], stretch, space.clear_spacing)
         if count == 0:
             raise NoRoomError(
                 f"not one bar of {greatest:.0f} mm fits a width of"
@@ -111,7 +111,7 @@ def _layers(
     return placed, layers
 
 
-def _fitting(diameters: Sequence[float], stretch: Stretch, clear_spacing: ClearSpacing) -> int:
+def fitting(diameters: Sequence[float], stretch: Stretch, clear_spacing: ClearSpacing) -> int:
     """How many of the bars, taken in order, one layer holds."""
     width = stretch[1] - stretch[0] + ROUNDING
     needed, count, greatest = 0.0, 0, 0.0

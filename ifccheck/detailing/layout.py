@@ -29,6 +29,7 @@ from ifccheck.detailing.layers import (
     top_layers,
 )
 from ifccheck.detailing.room import NoRoomError, soffit_and_top, web
+from ifccheck.detailing.rows import placed_rows, rows_of
 from ifccheck.detailing.segments import PLACES, Kind, Place, Segment, segments_of
 from ifccheck.notation import bars_in_a_row, show_bars
 from ifccheck.units import show
@@ -64,7 +65,8 @@ def lay_out(
 
     Clear cover to the stirrup, the stirrup, then bars spread over the width in one layer while
     the least clear spacing allows, the rest in further layers at that spacing. Bottom bars use
-    the width of the outline where they lie, top bars that of the web.
+    the width of the outline where they lie, top bars that of the web. Rows of bars whose height is
+    given lie at that height, side by side.
 
     Bars end where their zone does, anchored at the beam's ends; those that the next zone holds
     too go on through it, at the less favourable of the heights found.
@@ -180,7 +182,7 @@ def _section(
         return Section(None)
     space = Space(segment.outline, cover + _stirrup_diameter(segment), clear_spacing)
     try:
-        return Section(cover, tuple(_placed(space, kinds)))
+        return Section(cover, (*_placed(space, kinds), *placed_rows(space, rows_of(segment))))
     except NoRoomError as error:
         where = f"{show(segment.start, 'length')} to {show(segment.end, 'length')}"
         bars = "; ".join(_described(segment, place) for place in PLACES)
@@ -191,7 +193,7 @@ def _section(
 def _kinds(segment: Segment, place: Place, findings: _Findings) -> list[Kind]:
     """Bars of one place, one entry each, in the order in which they are placed."""
     speaking = [zone for zone in segment.zones if getattr(zone, place) is not None]
-    if not speaking and place != "side":
+    if not speaking and place != "side" and not _has_row_at(segment, place):
         findings.hear_nothing_of(place)
     if len(speaking) > 1:
         origins = " and ".join(zone.origin for zone in speaking)
@@ -203,6 +205,10 @@ def _kinds(segment: Segment, place: Place, findings: _Findings) -> list[Kind]:
         for _ in range(g.count)
     ]
     return sorted(kinds, key=lambda kind: -kind.diameter)
+
+
+def _has_row_at(segment: Segment, face: Face) -> bool:
+    return any(row.face == face for zone in segment.zones for row in zone.rows)
 
 
 def _cover(
@@ -262,6 +268,7 @@ def _apart(space: Space, bars: Sequence[tuple[Kind, Placed]]) -> None:
 
 def _described(segment: Segment, place: Place) -> str:
     groups: list[BarGroup] = [g for zone in segment.zones for g in getattr(zone, place) or ()]
+    groups += [row.group for zone in segment.zones for row in zone.rows if row.face == place]
     return f"{place} {show_bars(tuple(groups))}"
 
 

@@ -38,6 +38,8 @@ class Kind:
     designation: str
     bar_yield: float | None
     origin: str = field(compare=False)
+    z: float | None = None
+    """Height of its centre, where that is given [mm]"""
 
 
 @dataclass(frozen=True, slots=True)

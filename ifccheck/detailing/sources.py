@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Callable, Iterable, Sequence
 from dataclasses import dataclass
 from typing import NamedTuple
@@ -10,6 +11,7 @@ from ifccheck.beam import (
     Bars,
     Beam,
     DescribedZone,
+    Face,
     Reason,
     Reinforcement,
     Remark,
@@ -73,6 +75,7 @@ def _speaks(reinforcement: Reinforcement) -> bool:
         or zone.side is not None
         or zone.stirrups is not None
         or zone.no_stirrups
+        or zone.rows
         for zone in reinforcement.zones
     )
 
@@ -136,6 +139,8 @@ def _described_totals(zones: Sequence[DescribedZone]) -> _Totals:
         [sum(g.count * g.area for g in groups) for groups in faces if groups is not None]
         for faces in ([z.bottom for z in zones], [z.top for z in zones])
     )
+    bottom += _greatest_of_rows(zones, "bottom")
+    top += _greatest_of_rows(zones, "top")
     ratios: list[float | None] = [0.0 for zone in zones if zone.no_stirrups]
     for zone in zones:
         if zone.stirrups is not None:
@@ -147,6 +152,17 @@ def _described_totals(zones: Sequence[DescribedZone]) -> _Totals:
         top=max(top, default=None),
         stirrups=_greatest(ratios) if ratios else None,
     )
+
+
+def _greatest_of_rows(zones: Sequence[DescribedZone], face: Face) -> list[float]:
+    """Greatest area of rows at a face that any section holds [mm2]; empty where there are none."""
+    spans = [(zone.start or 0.0, math.inf if zone.end is None else zone.end) for zone in zones]
+    areas = [
+        sum(row.group.count * row.group.area for row in zone.rows if row.face == face)
+        for zone in zones
+    ]
+    held = [(start, end, area) for (start, end), area in zip(spans, areas, strict=True) if area]
+    return [sum(area for s, e, area in held if s <= x < e) for x, _, _ in held]
 
 
 def _thirds(beam: Beam) -> tuple[float, float]:

@@ -27,6 +27,7 @@ from ifccheck.ifc.context import Context
 from ifccheck.ifc.entity import Entity, get, text
 from ifccheck.ifc.materials import Material, Materials
 from ifccheck.ifc.properties import PropertyValue
+from ifccheck.ifc.units import ModelUnits
 
 GRADE_PROPERTIES = frozenset({"grade", "steelgrade", "steel grade"})
 SIZE_PROPERTIES = frozenset({"size", "barsize", "bar size", "diameter", "nominaldiameter"})
@@ -172,22 +173,13 @@ class BarData:
             SizeSource("nominal diameter", _times(diameter, length)),
             SizeSource("nominal diameter of its type", _times(about.diameter, length)),
             SizeSource("swept diameter", swept),
-            SizeSource("area", area=self._area(area)),
-            SizeSource("area of its type", area=self._area(about.area)),
+            SizeSource("area", area=area_of_bar(area, self._context.units)),
+            SizeSource("area of its type", area=area_of_bar(about.area, self._context.units)),
             SizeSource("name", designation=name),
             *hints.sizes,
         ]
         size = settle_size(sources)
         return -1 if size is None else _index(self.sizes, size)
-
-    def _area(self, area: float | None) -> float | None:
-        """An area [mm2]: in the model's unit of area, or else in the square of its length unit."""
-        if area is None:
-            return None
-        declared, by_length = (
-            area * factor for factor in (self._context.units.area, self._context.units.length**2)
-        )
-        return by_length if is_area_of_bar(by_length) and not is_area_of_bar(declared) else declared
 
     def _grade(
         self,
@@ -242,6 +234,14 @@ class BarData:
             number = None if value is None else value.number
             if number is not None and LEAST_YIELD <= number <= GREATEST_YIELD:
                 yield Given(number, f"material {material.name!r} {set_name}.{YIELD_PROPERTY}")
+
+
+def area_of_bar(area: float | None, units: ModelUnits) -> float | None:
+    """An area [mm2]: in the model's unit of area, or else in the square of its length unit."""
+    if area is None:
+        return None
+    declared, by_length = (area * factor for factor in (units.area, units.length**2))
+    return by_length if is_area_of_bar(by_length) and not is_area_of_bar(declared) else declared
 
 
 def _looked_up(of: Mapping[int, int], ids: Sequence[int]) -> Ints:

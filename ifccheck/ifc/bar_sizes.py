@@ -97,6 +97,12 @@ def _statement(source: SizeSource) -> _Statement | None:
     return None
 
 
+def taken_as(size: BarSize) -> str:
+    """What is to be said of a size on which the sources disagree; empty where they agree."""
+    taken = f"taken as {size.designation} of {size.area:.4g} mm2"
+    return f"sizes differ ({size.doubt}): {taken}" if size.doubt else ""
+
+
 def is_area_of_bar(area: float) -> bool:
     """Whether a number can be the area of a bar [mm2]."""
     return LEAST_DIAMETER**2 <= 4.0 * area / math.pi <= GREATEST_DIAMETER**2

@@ -14,7 +14,7 @@ from ifccheck.ifc.bar_outlines import FIT_TOLERANCE, legs_outside, runs_outside
 from ifccheck.ifc.bar_paths import Bools, Floats, Ints
 from ifccheck.ifc.bar_pieces import CentreLines, count_by_row
 from ifccheck.ifc.bar_rows import BarPlaces, Rows
-from ifccheck.ifc.bar_sizes import BarSize
+from ifccheck.ifc.bar_sizes import taken_as
 from ifccheck.ifc.bars import ALONG, LEAST_RUN, LONGEST_CHORD, Runs, find_runs
 from ifccheck.ifc.equal_rows import renumbered, used
 from ifccheck.ifc.measured import Measured, measure
@@ -198,10 +198,5 @@ def _judge_data(model: Measured, used: Bools) -> None:
     """Tell where the sources of size and grade disagree or could not be read."""
     table, strand, rows = model.places.table, model.rows.strand, np.flatnonzero(used)
     sizes, grades = model.places.size[strand[rows]], model.places.grade[strand[rows]]
-    model.remark_each(rows, sizes, [_size_doubt(size) for size in table.sizes])
+    model.remark_each(rows, sizes, [taken_as(size) for size in table.sizes])
     model.remark_each(rows, grades, [grade.doubt for grade in table.grades])
-
-
-def _size_doubt(size: BarSize) -> str:
-    taken = f"taken as {size.designation} of {size.area:.4g} mm2"
-    return f"sizes differ ({size.doubt}): {taken}" if size.doubt else ""

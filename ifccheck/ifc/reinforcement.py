@@ -19,9 +19,8 @@ from ifccheck.ifc.context import BeamFrame, Context
 from ifccheck.ifc.described import read_described
 from ifccheck.ifc.entity import Entity, label
 from ifccheck.ifc.physical import Physical, reduce_bars
+from ifccheck.ifc.sections import read_sections
 from ifccheck.ifc.step_table import StepTable
-
-SECTIONS = "IfcReinforcementDefinitionProperties"
 
 
 def read_reinforcement(
@@ -35,7 +34,7 @@ def read_reinforcement(
     ``mapping`` tells which property of the project's own holds what: field to "Set.Property".
     With the ``statements`` of the file many bars are read in half the time.
     """
-    sections = _sections(context, hosts)
+    sections = read_sections(context, hosts)
     described = read_described(context, hosts, mapping)
     physical, asides = _physical(context, hosts, sections.keys() | described.keys(), statements)
     found: dict[int, tuple[Reinforcement, ...]] = {}
@@ -45,16 +44,6 @@ def read_reinforcement(
             sources[0] = replace(sources[0], remarks=sources[0].remarks + asides[beam])
         found[beam] = tuple(sources)
     return found
-
-
-def _sections(context: Context, hosts: Mapping[int, BeamFrame]) -> dict[int, Reinforcement]:
-    defined = {entity.id() for entity in _instances(context, SECTIONS)}
-    reason = Reason("reinforcement given by sections is not read yet")
-    return {
-        beam: Reinforcement(source="sections", reasons=(reason,))
-        for beam in hosts
-        if defined and defined.intersection(context.relations.property_sets(beam))
-    }
 
 
 def _instances(context: Context, name: str) -> tuple[Entity, ...]:

@@ -120,6 +120,7 @@ def _source(beam: Beam, index: int) -> _Source:
 
 def _zone_row(zone: DescribedZone, length: float) -> SteelRow:
     """Reinforcement that is described, in one row: it has no place of its own yet."""
+    yields = (zone.bar_yield, *(row.bar_yield for row in zone.rows))
     return SteelRow(
         name="; ".join(zone_words(zone)),
         area="",
@@ -127,7 +128,7 @@ def _zone_row(zone: DescribedZone, length: float) -> SteelRow:
         start=metres(zone.start if zone.start is not None else 0.0),
         end=metres(zone.end if zone.end is not None else length),
         ends="",
-        strength=f"{zone.bar_yield:.0f}" if zone.bar_yield else "",
+        strength=", ".join(f"{stated:.0f}" for stated in dict.fromkeys(yields) if stated),
         assumed=False,
         origin=zone.origin,
     )

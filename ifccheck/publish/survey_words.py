@@ -140,6 +140,9 @@ def zone_words(zone: DescribedZone) -> list[str]:
     """Return the reinforcement that a zone describes: "top 3-25M"."""
     faces = (("top", zone.top), ("bottom", zone.bottom), ("side", zone.side))
     words = [f"{name} {show_bars(groups)}" for name, groups in faces if groups is not None]
+    for row in zone.rows:
+        height = quantity_words(row.z, "dimension")
+        words.append(f"{row.face} {show_bars((row.group,))} at z = {height}")
     if zone.stirrups is not None:
         words.append(f"stirrups {show_stirrups(zone.stirrups)}")
     elif zone.no_stirrups:

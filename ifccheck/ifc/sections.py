@@ -1,0 +1,129 @@
+"""Reinforcement given by sections: IfcReinforcementDefinitionProperties of beams and types."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator, Mapping, Sequence
+from dataclasses import dataclass, field
+
+from ifccheck.beam import BarRow, DescribedZone, Reason, Reinforcement, Remark, RemarkKind
+from ifccheck.ifc.bar_findings import STAGE
+from ifccheck.ifc.context import BeamFrame, Context
+from ifccheck.ifc.entity import UnreadableError
+from ifccheck.ifc.section_places import Extent, Lying, extents, levels, lie, offset_of
+from ifccheck.ifc.section_rows import Row, RowReader, Stated
+from ifccheck.notation import show_bars
+
+SECTIONS = "IfcReinforcementDefinitionProperties"
+
+
+def read_sections(context: Context, hosts: Mapping[int, BeamFrame]) -> dict[int, Reinforcement]:
+    """Read the reinforcement that section definitions give beams, by STEP id of the beam.
+
+    The definitions of a beam itself go before those of its type.
+    """
+    defined = {entity.id() for entity in context.file.by_type(SECTIONS)}
+    if not defined:
+        return {}
+    reader = RowReader(context)
+    found: dict[int, Reinforcement] = {}
+    for beam, frame in hosts.items():
+        own, of_type = _definitions(context, beam, defined)
+        if own or of_type:
+            found[beam] = _read(context, beam, frame, reader.of(own or of_type), own and of_type)
+    return found
+
+
+def _definitions(context: Context, beam: int, defined: set[int]) -> tuple[list[int], list[int]]:
+    """Definitions that a beam has itself, and those of its type."""
+    sets = context.relations.sets
+    type_id = context.relations.type_of(beam)
+    own = [one for one in sets.get(beam, ()) if one in defined]
+    of_type = [] if type_id is None else [one for one in sets.get(type_id, ()) if one in defined]
+    return own, [one for one in of_type if one not in own]
+
+
+@dataclass(slots=True)
+class _Findings:
+    """What is to be said of the sections of one beam."""
+
+    key: str
+    reasons: list[Reason] = field(default_factory=list)
+    remarks: list[Remark] = field(default_factory=list)
+
+    def remark(self, text: str, kind: RemarkKind = "doubt") -> None:
+        """Say something once."""
+        remark = Remark(self.key, STAGE, text, kind)
+        if remark not in self.remarks:
+            self.remarks.append(remark)
+
+
+def _read(
+    context: Context, beam: int, frame: BeamFrame, stated: Stated, passed_over: Sequence[int]
+) -> Reinforcement:
+    entity = context.file.by_id(beam)
+    findings = _Findings(str(entity[0]), reasons=list(stated.reasons))
+    if passed_over:
+        findings.remark("its type defines sections of reinforcement too: its own are counted")
+    rows = list(_without_repeats(stated.rows, findings))
+    zones: tuple[DescribedZone, ...] = ()
+    try:
+        if rows:
+            offset = offset_of(context.placements.matrix(entity), frame)
+            reach = extents(rows, offset, frame.axis.length)
+            zones = tuple(_zones(rows, reach, frame, findings))
+    except UnreadableError as error:
+        findings.reasons.append(Reason(str(error)))
+    return Reinforcement(
+        source="sections",
+        zones=zones,
+        reasons=tuple(dict.fromkeys(findings.reasons)),
+        remarks=tuple(findings.remarks),
+    )
+
+
+def _without_repeats(rows: Sequence[Row], findings: _Findings) -> Iterator[Row]:
+    """Rows without those that say the very same of the same place as another."""
+    seen: dict[tuple[object, ...], Row] = {}
+    for row in rows:
+        key = (row.start, row.end, row.depth, row.said, row.bars)
+        first = seen.setdefault(key, row)
+        if first is row:
+            yield row
+        else:
+            findings.remark(f"{row.origin} repeats {first.origin}: counted once")
+
+
+def _zones(
+    rows: Sequence[Row], reach: Sequence[Extent], frame: BeamFrame, findings: _Findings
+) -> Iterator[DescribedZone]:
+    """Zones of a beam, one for all rows that reach from the same place to the same place."""
+    beside = [levels(row, extent, frame) for row, extent in zip(rows, reach, strict=True)]
+    lying = lie(rows, beside)
+    together: dict[Extent, list[BarRow]] = {}
+    for row, extent, at in zip(rows, reach, lying, strict=True):
+        together.setdefault(extent, []).append(_bar_row(row, at))
+        _tell(row, at, findings)
+    for extent, held in together.items():
+        origins = ", ".join(dict.fromkeys(row.origin for row in held))
+        yield DescribedZone(*extent, rows=tuple(held), origin=origins)
+
+
+def _bar_row(row: Row, at: Lying) -> BarRow:
+    return BarRow(at.face, row.bars.group, at.z, row.bars.yield_strength, row.origin)
+
+
+def _tell(row: Row, at: Lying, findings: _Findings) -> None:
+    for doubt in row.bars.doubts:
+        findings.remark(f"{row.origin}: {doubt}")
+    if at.assumed:
+        findings.remark(
+            f"{row.origin}: its effective depth of {row.depth:.0f} mm is taken from the top:"
+            f" {show_bars((row.bars.group,))} at the {at.face}",
+            "assumption",
+        )
+    if row.transverse:
+        findings.remark(
+            f"{row.origin}: its transverse position of {row.transverse:.0f} mm is not used: its"
+            " bars are spread over the width",
+            "note",
+        )

@@ -1,0 +1,267 @@
+"""One beam with one reinforcement, given in every way that a model or a schedule has for it."""
+
+from __future__ import annotations
+
+import itertools
+from collections.abc import Callable, Mapping
+from dataclasses import replace
+from pathlib import Path
+from typing import Any
+
+import pytest
+from hypothesis import HealthCheck, given, settings
+from hypothesis import strategies as st
+
+from tests.models import (
+    AREA_UNITS,
+    LENGTH_UNITS,
+    Layer,
+    MadeBeam,
+    Model,
+    Setting,
+    Ties,
+    answers,
+    brief,
+    load,
+    rate_model,
+    rectangle,
+    state,
+)
+from tests.section_definitions import Piece, Writer
+
+LENGTH, WIDTH, HEIGHT = 7200.0, 300.0, 600.0
+PLAIN = MadeBeam(rectangle(WIDTH, HEIGHT), LENGTH, columns=(900.0, 900.0))
+"""Its columns are wide enough for bars to be developed in them"""
+NOTATION = {"BottomBars": "3-25M", "TopBars": "2-20M", "Stirrups": "2 legs 10M @ 200"}
+BOTTOM = Piece(end=LENGTH, depth=536.1)
+TOP = Piece(end=LENGTH, depth=61.05, count=2, diameter=19.5, area=600.0)
+"""Cover of 40 mm, 10M stirrups of 11.3 mm, and half a bar: 63.9 mm from the soffit, and 61.05 mm
+from the top"""
+COVER = 'cover = "40 mm"'
+FIXED = """
+[[supports]]
+beams = ["*"]
+start = "fixed"
+end = "fixed"
+bearing = ["900 mm", "900 mm"]
+"""
+LOADS = (FIXED, load("floor", 'line = "8 kN/m"'), load("press", 'point = "25 kN"', 'at = "50 %"'))
+
+
+def text(*entries: str, sources: str = "", cover: bool = True) -> str:
+    """The brief, with what it says of the reinforcement."""
+    made = brief(*LOADS, *entries)
+    head = f"[reinforcement]\n{sources}\n" if sources else ""
+    made = made.replace("[cases.floor]", f"{head}[cases.floor]", 1)
+    return made.replace("[defaults]", f"[defaults]\n{COVER}" if cover else "[defaults]", 1)
+
+
+def written(setting: Setting, beam: MadeBeam = PLAIN, *pieces: Piece, name: str | None = None,
+            change: Callable[[Model, Any], None] | None = None) -> bytes:  # fmt: skip
+    """A model of the beam, with a section definition where there are pieces."""
+    made = Model(setting)
+    made.add_beam(beam)
+    element = next(one for one in made.elements if one.is_a("IfcBeam"))
+    if pieces:
+        write = Writer(made.file, LENGTH_UNITS[setting.unit], AREA_UNITS[setting.unit], made.owner)
+        write.give([element], *pieces, name=name)
+    if change is not None:
+        change(made, element)
+    return made.finish()
+
+
+def rated(folder: Path, data: bytes, brief_text: str) -> dict[str, Any]:
+    (answer,) = answers(rate_model(folder, data, brief_text)).values()
+    return answer
+
+
+def bars() -> MadeBeam:
+    half = WIDTH / 2.0 - 63.9
+    places = tuple(150.0 + 200.0 * n for n in range(36))
+    return replace(
+        PLAIN,
+        layers=(
+            Layer("25M", 63.9, (-half, 0.0, half), 40.0, LENGTH - 40.0, (True, True), 400.0),
+            Layer("20M", HEIGHT - 61.05, (-half, half), 40.0, LENGTH - 40.0, (True, True), -400.0),
+        ),
+        ties=(Ties("10M", places, WIDTH / 2.0 - 45.65, 45.65, HEIGHT - 45.65),),
+    )
+
+
+def project_set(made: Model, element: Any) -> None:
+    """A set of the project's own, with lists, an enumeration and a unit of a value's own."""
+    create = made.file.create_entity
+    label = lambda value: create("IfcLabel", value)  # noqa: E731
+    inch = made._converted("LENGTHUNIT", "inch", "IfcLengthMeasure", 0.0254,
+                           create("IfcSIUnit", UnitType="LENGTHUNIT", Name="METRE"))  # fmt: skip
+    kept = create("IfcPropertyEnumeration", "Sizes", [label("2-20M"), label("3-20M")])
+    held = [
+        create("IfcPropertyListValue", "Rebar bottom", None, [label("2-25M"), label("1x25M")]),
+        create("IfcPropertyEnumeratedValue", "Rebar top", None, [label("2-20M")], kept),
+        create("IfcPropertySingleValue", "Rebar links", None, label("2 legs 10M @ 200"), None),
+        create("IfcPropertySingleValue", "Cover", None, create("IfcReal", 40.0 / 25.4), inch),
+    ]
+    values = made.rooted("IfcPropertySet", "own", Name="Office Beam 7", HasProperties=held)
+    made.rooted("IfcRelDefinesByProperties", "own", RelatedObjects=[element],
+                RelatingPropertyDefinition=values)  # fmt: skip
+
+
+MAPPING = """
+[reinforcement.properties]
+top = "Office Beam*.Rebar top"
+bottom = "Office*.*bottom"
+stirrups = "*.Rebar links"
+cover = "Office Beam 7.Cover"
+"""
+SCHEDULE = "Mark,Top,Bottom,Stirrups,Cover\nB-1,2-20M,3-25M,2 legs 10M @ 200,40 mm\n"
+
+WAYS: Mapping[str, Callable[[Path, Setting], dict[str, Any]]] = {
+    "bars": lambda folder, setting: rated(folder, written(setting, bars()), text()),
+    "sections": lambda folder, setting: rated(folder, written(setting, PLAIN, BOTTOM, TOP), text()),
+    "type": lambda folder, setting: rated(folder, written(setting, change=by_type), text()),
+    "own set": lambda folder, setting: rated(
+        folder, written(setting, replace(PLAIN, notation=NOTATION)), text(cover=False)
+    ),
+}
+
+
+def by_type(made: Model, element: Any) -> None:
+    write = Writer(
+        made.file, LENGTH_UNITS[made.setting.unit], AREA_UNITS[made.setting.unit], made.owner
+    )
+    write.give_by_type([element], write.definition(BOTTOM, name="Bottom"),
+                       write.definition(TOP, name="Top"))  # fmt: skip
+
+
+def by_schedule(folder: Path, setting: Setting) -> dict[str, Any]:
+    folder.mkdir(parents=True, exist_ok=True)
+    (folder / "bars.csv").write_text(SCHEDULE, encoding="utf-8")
+    return rated(folder, written(setting), text(sources='schedule = "bars.csv"', cover=False))
+
+
+@pytest.mark.parametrize("schema", ["IFC2X3", "IFC4"])
+@pytest.mark.parametrize("unit", ["mm", "m", "inch"])
+def test_the_same_steel_gives_the_same_rating(schema: Any, unit: Any, tmp_path: Path) -> None:
+    setting = Setting(schema=schema, unit=unit)
+    found = {name: way(tmp_path / name, setting) for name, way in WAYS.items()}
+    found["schedule"] = by_schedule(tmp_path / "schedule", setting)
+    first = found["bars"]
+    assert first["verdict"] == "adequate"
+    for name, answer in found.items():
+        for each in ("FlexureSagging", "FlexureHogging"):
+            one, other = state(first, each), state(answer, each)
+            for key in ("utilisation", "resistance", "demand"):
+                assert other[key] == pytest.approx(one[key], rel=0.002), (name, each, key)
+        if name in ("sections", "type"):
+            assert answer["verdict"] == "not rated"
+            assert "stirrups" in " ".join(answer["reasons"])
+            continue
+        assert answer["verdict"] == "adequate"
+        shear, same = state(answer, "Shear"), state(first, "Shear")
+        assert shear["utilisation"] == pytest.approx(same["utilisation"], rel=0.002)
+
+
+def telling(answer: dict[str, Any]) -> str:
+    """All that is said of a beam."""
+    said = [one["text"] if isinstance(one, dict) else one for one in answer["remarks"]]
+    return "; ".join([*said, *answer["reasons"]])
+
+
+@pytest.mark.parametrize(
+    ("change", "part"),
+    [
+        ({"role": "LIGATURE"}, "(LIGATURE) reinforcement against shear"),
+        ({"role": "NOTDEFINED"}, "does not tell whether its bars run along"),
+        ({"area": 0.0}, "the area is that of the diameter"),
+        ({"area": 15.0}, "sizes differ"),
+        ({"diameter": 28.0}, "sizes differ"),
+        ({"end": LENGTH / 0.3048}, "along the beam, which is 7.20 m long"),
+        ({"grade": ""}, "yield strength of the bars assumed"),
+        ({"depth": None}, "has no EffectiveDepth"),
+    ],
+)
+def test_a_wrong_statement_ends_at_the_safe_area_and_is_told(
+    change: dict[str, Any], part: str, tmp_path: Path
+) -> None:
+    setting = Setting()
+    honest = rated(tmp_path / "honest", written(setting, PLAIN, BOTTOM, TOP), text())
+    answer = rated(
+        tmp_path / "wrong", written(setting, PLAIN, replace(BOTTOM, **change), TOP), text()
+    )
+    assert part in telling(answer)
+    assert answer["verdict"] != "adequate"
+    states = {one["name"]: one["utilisation"] for one in answer["limit_states"]}
+    sagging = states.get("FlexureSagging")
+    least = state(honest, "FlexureSagging")["utilisation"]
+    assert sagging is None or sagging >= 0.995 * least
+
+
+def test_bars_that_stop_short_of_the_middle_do_not_count_there(tmp_path: Path) -> None:
+    short = replace(BOTTOM, end=LENGTH / 2.0 - 300.0)
+    answer = rated(tmp_path, written(Setting(), PLAIN, short, TOP), text())
+    assert answer["verdict"] == "not rated"
+    assert "flexure, sagging: the bars of the bottom are not stated" in answer["reasons"]
+    assert state(answer, "FlexureSagging")["position"] >= LENGTH / 2.0 - 300.0
+
+
+def test_positions_turn_with_the_placement(tmp_path: Path) -> None:
+    """More steel under a load off the middle, whichever way the placement looks."""
+    found = []
+    for from_end, place in itertools.product((False, True), ("25 %", "75 %")):
+        start, end = (4200.0, LENGTH) if from_end else (0.0, 3000.0)
+        more = replace(BOTTOM, start=start, end=end, depth=490.0)
+        entry = load("press", 'point = "300 kN"', f'at = "{place}"')
+        answer = rated(
+            tmp_path / f"{from_end} {place}",
+            written(Setting(from_end=from_end), PLAIN, BOTTOM, more, TOP),
+            text().replace(LOADS[-1], entry),
+        )
+        found.append(state(answer, "FlexureSagging"))
+    left, right, mirrored_right, mirrored_left = found
+    assert left["utilisation"] < 0.9 * right["utilisation"]
+    assert left["utilisation"] == pytest.approx(mirrored_left["utilisation"], rel=1e-9)
+    assert right["utilisation"] == pytest.approx(mirrored_right["utilisation"], rel=1e-9)
+
+
+def test_rows_that_do_not_fit_are_a_reason(tmp_path: Path) -> None:
+    wide = replace(BOTTOM, count=9, area=4500.0)
+    low = replace(BOTTOM, depth=595.0)
+    for piece, part in ((wide, "do not fit side by side"), (low, "stand out of the concrete")):
+        answer = rated(tmp_path / part[:6], written(Setting(), PLAIN, piece, TOP), text())
+        assert answer["verdict"] == "not rated"
+        assert part in telling(answer)
+
+
+def test_another_source_beside_sections_is_compared_in_numbers(tmp_path: Path) -> None:
+    more = replace(PLAIN, notation={**NOTATION, "BottomBars": "4-25M"})
+    answer = rated(tmp_path, written(Setting(), more, BOTTOM, TOP), text())
+    said = "sections used; properties differs: bottom bars 2000 mm2 against 1500 mm2"
+    assert said in telling(answer)
+
+
+ODD = st.sampled_from([0.0, -1.0, 1e-6, 1e9, 0.3, 25.2, 600.0, None])
+CHANGES: Mapping[str, Any] = {
+    "start": ODD, "end": ODD, "depth": ODD, "diameter": ODD, "area": ODD, "transverse": ODD,
+    "count": st.sampled_from([None, 0, 1, 2, 4, 7, -1, 2.5, 10**7]),
+    "role": st.sampled_from([None, "LIGATURE", "NOTDEFINED", "EDGE", "SHEAR"]),
+    "grade": st.sampled_from([None, "", "B500B", "300W", "great", "9999"]),
+    "surface": st.sampled_from([None, "PLAIN"]),
+    "profile": st.sampled_from([None, (300.0, 700.0), (600.0, 300.0), (0.0, 600.0)]),
+}  # fmt: skip
+
+
+@given(st.data(), st.sets(st.sampled_from(sorted(CHANGES)), min_size=1, max_size=3))
+@settings(
+    max_examples=40, deadline=None, suppress_health_check=[HealthCheck.function_scoped_fixture]
+)
+def test_contradictory_sections_never_rate_a_beam_better(
+    tmp_path_factory: pytest.TempPathFactory, data: Any, fields: set[str]
+) -> None:
+    """No traceback, no "adequate", and no more resistance than the least that was said."""
+    changes = {name: data.draw(CHANGES[name], label=name) for name in sorted(fields)}
+    piece = replace(BOTTOM, **changes)
+    name = data.draw(st.sampled_from([None, "Top", "Bottom"]), label="name")
+    folder = tmp_path_factory.mktemp("odd")
+    answer = rated(folder, written(Setting(), PLAIN, piece, TOP, name=name), text())
+    assert answer["verdict"] != "adequate"
+    assert answer["reasons"]
