@@ -14,7 +14,14 @@ from ifccheck.brief.load import load_brief
 from ifccheck.brief.merging import Matches
 from ifccheck.brief.model import Brief, ScheduleRow
 from ifccheck.brief.schedule import read_schedule
-from ifccheck.brief.selecting import Found, check_reached, check_scope, join, selections
+from ifccheck.brief.selecting import (
+    Found,
+    check_reached,
+    check_rows_reached,
+    check_scope,
+    join,
+    selections,
+)
 from ifccheck.brief.zones import schedule_remarks, with_schedule
 from ifccheck.errors import BriefError, ModelError, UsageError
 from ifccheck.ifc.opening import OpenedModel, open_model
@@ -96,6 +103,7 @@ def rate(models: Sequence[Path], brief_path: Path, say: Say = lambda _: None) ->
     reads = read_models(models, plan.brief, say)
     found = tuple(find_beams(read, plan) for read in reads)
     check_reached(plan.brief, found)
+    check_rows_reached(plan.brief, plan.schedule, found)
     rated = tuple(
         rate_model(read, join(plan.brief, plan.schedule, of_model), plan, found, say)
         for read, of_model in zip(reads, found, strict=True)

@@ -223,7 +223,7 @@ def _beam_cells(beam: Beam, span: Span | None) -> tuple[Cell, ...]:
 
 
 _RATING = (
-    "verdict", "checked", "not_checked", "reasons", "utilisation", "utilisation_state",
+    "verdict", "checked", "not_checked", "reasons", "doubts", "utilisation", "utilisation_state",
     "governing", "governing_position_m", "governing_combination", "governing_clause",
     "governing_demand", "governing_resistance", "governing_unit",
 )  # fmt: skip
@@ -235,6 +235,7 @@ def _rating_cells(rating: Rating) -> tuple[Cell, ...]:
         ", ".join(rating.checked),
         ", ".join(rating.not_checked),
         "; ".join([reason.text for reason in rating.reasons]),
+        "; ".join([remark.text for remark in rating.remarks if remark.kind == "doubt"]),
         rating.utilisation,
         utilisation_state(rating.utilisation),
         *_governing_cells(rating.governing),

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import replace
+from itertools import permutations
 
 import pytest
 from hypothesis import assume, given, settings
@@ -11,6 +12,7 @@ from hypothesis import strategies as st
 from ifccheck.beam import (
     Anchor,
     Axis,
+    BarGroup,
     Bars,
     Beam,
     DescribedZone,
@@ -405,16 +407,95 @@ def test_differences_are_reported_in_numbers():
     [remark] = choose_source(both, ALL).remarks
     assert remark.kind == "doubt"
     assert remark.text == (
-        "schedule used; bars differs: bottom bars 2000 mm2 against 1500 mm2;"
-        " stirrups 1000 mm2/m against 800 mm2/m"
+        "schedule used; bars differs: bottom bars 2000 mm2 against 1500 mm2 (+33 %);"
+        " stirrups 200 mm2 at 200 mm, 1000 mm2/m against 200 mm2 at 250 mm, 800 mm2/m (+25 %)"
     )
+
+
+def says(source, *, bars=(4, 500.0), from_=0.0, to=LENGTH):
+    """A source, drawn or described, of four 25M bars below from a place to another."""
+    count, area = bars
+    if source == "bars":
+        drawn = Bars(count, 25.2, area, from_, to, 64.0, tuple(range(count)), designation="25M")
+        return Reinforcement("bars", bars=(drawn,))
+    group = BarGroup(count, "25M", 25.2, area)
+    return described(source, DescribedZone(start=from_, end=to, bottom=(group,), origin="row 2"))
+
+
+@pytest.mark.parametrize(("first", "second"), list(permutations(ALL, 2)))
+def test_every_pair_of_sources_that_differ_is_told_in_numbers(first, second):
+    both = beam(reinforcement=(says(first), says(second, bars=(3, 500.0))))
+    [remark] = choose_source(both, (first, second)).remarks
+    assert remark.text == (
+        f"{first} used; {second} differs: bottom bars 1500 mm2 against 2000 mm2 (-25 %)"
+    )
+    agreeing = beam(reinforcement=(says(first), says(second, bars=(4, 490.9))))
+    assert choose_source(agreeing, (first, second)).remarks == ()
+
+
+@pytest.mark.parametrize(("first", "second"), list(permutations(ALL, 2)))
+def test_a_difference_over_a_part_of_the_beam_is_told_with_its_place(first, second):
+    longer, shorter = says(first), says(second, from_=40.0, to=4000.0)
+    remarks = choose_source(beam(reinforcement=(longer, shorter)), (first, second)).remarks
+    if second == "bars":  # a description says nothing of what is outside of its zones
+        assert [remark.text for remark in remarks] == [
+            f"{first} used; bars differs: bottom bars none against 2000 mm2 between 4.00 m and"
+            " 6.00 m"
+        ]
+    else:
+        assert remarks == ()
+    remarks = choose_source(beam(reinforcement=(longer, shorter)), (second, first)).remarks
+    against = "2000 mm2 against none" if second == "bars" else f"2000 mm2, not stated by {second}"
+    assert [remark.text for remark in remarks] == [
+        f"{second} used; {first} differs: bottom bars {against} between 4.00 m and 6.00 m"
+    ]
+
+
+def test_steel_that_only_the_source_not_used_states_is_told():
+    both = beam(
+        reinforcement=(physical(), described("schedule", zone("3-25M", None, stirrups=None)))
+    )
+    [remark] = choose_source(both, ALL).remarks
+    assert remark.text == (
+        "schedule used; bars differs: top bars 600 mm2, not stated by schedule;"
+        " stirrups 200 mm2 at 250 mm, 800 mm2/m, not stated by schedule"
+    )
+
+
+def test_many_stretches_are_told_in_short():
+    stripes = [
+        DescribedZone(start=x, end=x + 500.0, bottom=parse_bars("2-25M"))
+        for x in range(0, 6000, 1000)
+    ]
+    both = beam(reinforcement=(says("schedule"), described("properties", *stripes)))
+    [remark] = choose_source(both, ALL).remarks
+    assert remark.text.count("1000 mm2 against 2000 mm2 (-50 %) between") == 3
+    assert remark.text.endswith("; bottom bars on 3 more stretches")
+
+
+def test_a_schedule_that_gives_cover_alone_is_told_where_another_source_is_used():
+    cover = described("schedule", DescribedZone(cover=60.0, origin="s.csv row 4"))
+    both = beam(reinforcement=(physical(), cover))
+    [remark] = choose_source(both, ALL).remarks
+    assert remark.text.startswith("s.csv row 4: gives no bars and no stirrups, bars used instead")
+
+
+def test_a_yield_in_a_row_of_its_own_is_that_of_the_bars_there():
+    steel = zone("3-25M", "2-20M", stirrups="2 legs 10M @ 250")
+    yields = DescribedZone(start=0.0, end=3000.0, bar_yield=300.0, stirrup_yield=250.0)
+    laid = lay_out(beam(), (steel, yields), clear_spacing=lambda d: clear_spacing(d, 20.0))
+    for each in laid.bars:
+        assert (each.yield_strength and each.yield_strength.value) == (
+            300.0 if each.end <= 3000.0 else None
+        )
+    assert [s.yield_strength and s.yield_strength.value for s in laid.stirrups] == [250.0, None]
 
 
 def test_what_a_source_does_not_say_is_no_difference():
     both = beam(
         reinforcement=(
             physical(legs=None),
-            described("schedule", zone("3-25M", None, stirrups="10M @ 250")),
+            described("schedule", zone("3-25M", "2-20M", stirrups="10M @ 250")),
         )
     )
     assert choose_source(both, ALL).remarks == ()
@@ -422,7 +503,7 @@ def test_what_a_source_does_not_say_is_no_difference():
 
 def test_bars_that_do_not_overlap_are_not_added_up():
     bars = physical().bars
-    halves = (replace(bars[0], end=2000.0), replace(bars[0], start=2500.0), bars[1])
+    halves = (replace(bars[0], end=2000.0), replace(bars[0], start=2250.0), bars[1])
     both = beam(reinforcement=(replace(physical(), bars=halves), described("schedule", zone())))
     assert choose_source(both, ALL).remarks == ()
 

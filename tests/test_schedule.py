@@ -2,17 +2,22 @@
 
 import zipfile
 from dataclasses import replace
+from datetime import datetime, time
 from pathlib import Path
 
 import openpyxl
 import pytest
 
 from ifccheck.beam import Axis, Beam, Remark
+from ifccheck.brief.mark_ranges import expanded
 from ifccheck.brief.model import Selection
+from ifccheck.brief.quantities import read_position
 from ifccheck.brief.schedule import read_schedule
+from ifccheck.brief.selecting import parts_of
 from ifccheck.brief.zones import schedule_remarks, with_schedule
 from ifccheck.errors import BriefError
 from ifccheck.notation import parse_bars, parse_stirrups
+from ifccheck.units import QuantityError
 
 HEADER = ["Mark", "From", "To", "Top", "Bottom", "Side", "Stirrups", "Cover", "Bar yield"]
 ROWS = [
@@ -77,10 +82,130 @@ def test_numbers_as_marks_are_text(write):
     assert row.selection.beams == ("204",)
 
 
-def test_formulas_are_plain_text_and_never_evaluated(write):
-    path = write([["mark", "bottom"], ["B-1", '="3-"&"25M"']], ".xlsx")
-    with pytest.raises(BriefError, match=r"^beams.xlsx row 2 bottom: '=\"3-\"&\"25M\"' is not bar"):
+@pytest.mark.parametrize(
+    ("value", "told"),
+    [
+        ('="3-"&"25M"', "column B: holds a formula"),
+        ("=#REF!", "column B: holds a formula"),
+        (datetime(2026, 4, 3), "column B: holds a date or time ('2026-04-03 00:00:00')"),
+        (time(3, 25), "column B: holds a date or time"),
+    ],
+)
+def test_cells_that_are_no_text_are_told_and_never_evaluated(write, value, told):
+    path = write([["mark", "bottom"], ["B-1", value]], ".xlsx")
+    with pytest.raises(BriefError) as caught:
         read_schedule(path)
+    assert str(caught.value).startswith(f"beams.xlsx row 2 {told}")
+
+
+def test_a_cell_that_holds_an_error_is_told(tmp_path):
+    book = openpyxl.Workbook()
+    book.active.append(["mark", "bottom"])
+    book.active.append(["B-1", "#N/A"])
+    book.active["B2"].data_type = "e"
+    book.save(tmp_path / "beams.xlsx")
+    with pytest.raises(BriefError, match=r"row 2 column B: holds an error \('#N/A'\)"):
+        read_schedule(tmp_path / "beams.xlsx")
+
+
+def test_numbers_of_a_workbook_are_read_as_they_are_shown(tmp_path):
+    book = openpyxl.Workbook()
+    book.active.append(["mark", "from", "to", "bottom", "optional"])
+    book.active.append([204.0, 0.07, 0.5, "3-25M", True])
+    book.active["B2"].number_format = book.active["C2"].number_format = "0 %"
+    book.save(tmp_path / "beams.xlsx")
+    (row,) = read_schedule(tmp_path / "beams.xlsx")
+    assert row.selection.beams == ("204",)
+    assert (row.start.value, row.start.relative, row.start.text) == (0.07, True, "7 %")
+    assert row.end.on(6000.0) == 3000.0
+    assert row.optional
+
+
+def test_a_number_without_a_unit_is_refused_in_a_workbook_too(write):
+    path = write([["mark", "to", "bottom"], ["B-1", 1.5, "3-25M"]], ".xlsx")
+    with pytest.raises(BriefError, match=r"^beams.xlsx row 2 to: '1.5' has no unit"):
+        read_schedule(path)
+
+
+def test_a_mark_may_be_a_range_or_one_of_several_lines(write):
+    rows = [["mark", "bottom"], ["B-8..B-10, K-1*\nB-40", "3-25M"]]
+    (row,) = read_schedule(write(rows, ".xlsx"))
+    assert [part.beams for _, part in parts_of(row)] == [
+        ("B-8", "B-9", "B-10"),
+        ("K-1*",),
+        ("B-40",),
+    ]
+    assert [part.said for _, part in parts_of(row)] == ["B-8..B-10", "K-1*", "B-40"]
+
+
+@pytest.mark.parametrize(
+    ("text", "marks"),
+    [
+        ("B-201..B-203", ("B-201", "B-202", "B-203")),
+        ("L2/B9 .. L2/B11", ("L2/B9", "L2/B10", "L2/B11")),
+        ("B-08N..B-10N", ("B-08N", "B-09N", "B-10N")),
+        ("2B3x1..2B3x2", ("2B3x1", "2B3x2")),
+        ("7..9", ("7", "8", "9")),
+        ("B-1", ("B-1",)),
+        ("A..B", ("A..B",)),
+        ("B-2*..", ("B-2*..",)),
+    ],
+)
+def test_marks_that_a_text_stands_for(text, marks):
+    assert expanded(text) == marks
+
+
+@pytest.mark.parametrize(
+    ("text", "told"),
+    [
+        ("B-204..B-201", "does not ascend"),
+        ("B-204..B-204", "does not ascend"),
+        ("B-201..C-204", "differs in more than its last number"),
+        ("B-201N..B-204S", "differs in more than its last number"),
+        ("B-08..B-100", "has numbers of unequal length"),
+        ("B-1..B-100000", "stands for more than 1000 marks"),
+    ],
+)
+def test_ranges_that_make_no_sense_are_told(write, text, told):
+    with pytest.raises(BriefError, match=f"^beams.csv row 2 mark: .*{told}"):
+        read_schedule(write([["mark", "bottom"], [text, "3-25M"]]))
+
+
+@pytest.mark.parametrize(
+    ("text", "on_six_metres"),
+    [
+        ("L/4", 1500.0),
+        ("3L/4", 4500.0),
+        ("2 L / 3", 4000.0),
+        ("0.1 L", 600.0),
+        ("L", 6000.0),
+        ("L - 1.5 m", 4500.0),
+        ("L/2 + 2 ft", 3609.6),
+        ("25 %", 1500.0),
+        ("1500 mm", 1500.0),
+    ],
+)
+def test_places_are_lengths_or_shares_of_the_length(text, on_six_metres):
+    assert read_position(text).on(6000.0) == pytest.approx(on_six_metres)
+
+
+@pytest.mark.parametrize(
+    ("text", "told"),
+    [
+        ("4L/3", "is beyond the end"),
+        ("L + 1 m", "is beyond the end"),
+        ("L/0", "is beyond the end"),
+        ("0L - 1 m", "is before the start"),
+        ("L/4 - 1", "has no unit"),
+        ("L - 1,5 m", "has a comma"),
+        ("1/4", "is no"),
+        ("third", "is no"),
+        ("L/4 of B-3", "is no"),
+    ],
+)
+def test_places_that_cannot_be_are_told(text, told):
+    with pytest.raises(QuantityError, match=told):
+        read_position(text)
 
 
 FAULTS = [
@@ -103,6 +228,12 @@ FAULTS = [
     ([["mark", "bar_yield"], ["B-1", "4,00 MPa"]], "row 2 bar_yield: '4,00 MPa' has a comma"),
     ([["mark", "top", "from"], ["B-1", "none", "-1 m"]], "row 2 from: '-1 m' is negative"),
     ([["mark", "top", "to"], ["B-1", "none", "3"]], "row 2 to: '3' has no unit"),
+    ([["mark", "bottom"], ["B-1", "3,5-25M"]], "row 2 bottom: '3,5-25M'"),
+    ([["mark", "stirrups"], ["B-1", "10M @ 12,5"]], "row 2 stirrups: '10M @ 12,5'"),
+    ([["mark", "top", "from"], ["B-1", "none", "1,5 m"]], "row 2 from: '1,5 m' has a comma"),
+    ([["mark", "top", "from"], ["B-1", "none", "12,5 %"]], "row 2 from: '12,5 %' has a comma"),
+    ([["mark", "bottom", "optional"], ["B-1", "3-25M", "x"]], "row 2 optional: 'x' is neither"),
+    ([["mark", "from", "optional"], ["B-1", "1 m", "yes"]], "row 2: states nothing"),
     (
         [["mark", "top", "from", "to"], ["B-1", "none", "3 m", "2 m"]],
         "row 2 to: '2 m' is not beyond from = '3 m'",
@@ -198,7 +329,10 @@ def beam(key, length=6000.0):
 
 
 def laid(rows, **reached):
-    matches = {row.place: reached.get(f"row{n}", ("B-1",)) for n, row in enumerate(rows, 2)}
+    matches = {}
+    for n, row in enumerate(rows, 2):
+        keys = reached.get(f"row{n}", ("B-1",))
+        matches |= {row.place: keys} | {place: keys for place, _ in parts_of(row)}
     return with_schedule(rows, matches, {"B-1": beam("B-1"), "B-2": beam("B-2")})
 
 
@@ -274,7 +408,8 @@ def test_a_zone_beyond_the_beam_is_a_reason(write):
 def test_a_schedule_on_a_beam_of_unread_body_keeps_its_rows(write):
     rows = read_schedule(write([HEADER, *ROWS]))
     unread = replace(beam("B-1"), axis=None)
-    laid_on = with_schedule(rows, {row.place: ("B-1",) for row in rows}, {"B-1": unread})
+    places = {row.place for row in rows} | {place for row in rows for place, _ in parts_of(row)}
+    laid_on = with_schedule(rows, dict.fromkeys(places, ("B-1",)), {"B-1": unread})
     assert len(laid_on["B-1"].reinforcement[0].zones) == 3
 
 
@@ -291,3 +426,78 @@ def test_marks_that_no_model_knows_are_remarks(write):
     )
     elsewhere = {"beams.csv row 2.beams[1]": (), "beams.csv row 2.beams[2]": ("B-4",)}
     assert schedule_remarks(rows, [found, elsewhere]) == ()
+
+
+# --- rows for a beam itself and rows for many -----------------------------------------------------
+
+
+def fields(zones, *names):
+    return [(z.start, z.end, *(getattr(z, name) for name in names)) for z in zones]
+
+
+def test_a_row_for_the_beam_itself_goes_before_a_wildcard_field_by_field(write):
+    header = ["mark", "from", "to", "top", "bottom", "stirrups", "cover"]
+    rows = read_schedule(
+        write(
+            [
+                header,
+                ["B-*", "", "", "2-20M", "3-25M", "2 legs 10M @ 250", "40 mm"],
+                ["B-1", "", "2 m", "", "4-25M", "", "50 mm"],
+            ]
+        )
+    )
+    beams = laid(rows, row2=("B-1", "B-2"))
+    (one,), (other,) = beams["B-1"].reinforcement, beams["B-2"].reinforcement
+    assert (one.reasons, other.reasons, other.remarks) == ((), (), ())
+    assert fields(one.zones, "bottom", "top", "cover") == [
+        (0.0, 2000.0, parse_bars("4-25M"), None, 50.0),
+        (0.0, 2000.0, None, parse_bars("2-20M"), None),
+        (2000.0, 6000.0, parse_bars("3-25M"), parse_bars("2-20M"), 40.0),
+    ]
+    assert all(z.stirrups for z in one.zones if z.origin == "beams.csv row 2")
+    assert other.zones[0].bottom == parse_bars("3-25M")
+    (remark,) = one.remarks
+    assert remark.kind == "note"
+    assert remark.text == (
+        "beams.csv row 3 names the beam and replaces bottom, cover of beams.csv row 2"
+        " between 0 m and 2.00 m"
+    )
+
+
+@pytest.mark.parametrize("pattern", ["B-*", "B-1..B-9"])
+def test_none_for_the_beam_itself_takes_the_stirrups_of_a_pattern_away(write, pattern):
+    rows = [[pattern, "3-25M", "10M @ 250"], ["B-1", "", "none"]]
+    (described,) = laid(read_schedule(write([["mark", "bottom", "stirrups"], *rows])))[
+        "B-1"
+    ].reinforcement
+    assert [z.stirrups for z in described.zones] == [None, None]
+    assert [z.no_stirrups for z in described.zones] == [True, False]
+
+
+def test_two_patterns_that_reach_one_beam_contradict_each_other(write):
+    rows = read_schedule(write([["mark", "bottom"], ["B-*", "3-25M"], ["B-1..B-9", "4-25M"]]))
+    (reason,) = laid(rows)["B-1"].reinforcement[0].reasons
+    assert "both give bottom" in reason.text
+
+
+def test_steel_keeps_the_yield_of_the_steel_that_it_replaces(write):
+    header = ["mark", "top", "bottom", "bar_yield"]
+    rows = [["B-*", "2-20M", "3-25M", "300 MPa"], ["B-1", "", "4-25M", ""]]
+    (described,) = laid(read_schedule(write([header, *rows])))["B-1"].reinforcement
+    assert {z.bar_yield for z in described.zones} == {300.0}
+    rows = [["B-*", "2-20M", "", "500 MPa"], ["B-1", "", "4-25M", ""]]
+    (described,) = laid(read_schedule(write([header, *rows])))["B-1"].reinforcement
+    assert [z.bar_yield for z in described.zones] == [None, 500.0]
+
+
+def test_equal_rows_for_many_and_for_one_are_no_remark(write):
+    rows = read_schedule(write([["mark", "bottom"], ["B-*", "3-25M"], ["B-1", "3-25M"]]))
+    (described,) = laid(rows)["B-1"].reinforcement
+    assert (described.remarks, described.reasons) == ((), ())
+    assert [z.bottom for z in described.zones] == [parse_bars("3-25M")]
+
+
+def test_a_zone_before_the_start_is_a_reason(write):
+    rows = read_schedule(write([["mark", "from", "bottom"], ["B-1", "L - 8 m", "3-25M"]]))
+    (reason,) = laid(rows)["B-1"].reinforcement[0].reasons
+    assert reason.text == "beams.csv row 2: begins 2.00 m before the beam's start"

@@ -30,6 +30,7 @@ def to_brief(table: schema.BriefTable, path: Path, source: Source) -> Brief:
         defaults=_defaults(table.defaults),
         sources=_sources(table.reinforcement),
         schedule=_schedule(table.reinforcement, path),
+        schedule_optional=_schedule_optional(table.reinforcement),
         property_mapping=_mapping(table.reinforcement.properties),
         lines={shown(key): line for key, line in source.lines.items()},
         cases=cases,
@@ -121,6 +122,14 @@ def _schedule(table: schema.ReinforcementTable, path: Path) -> Path | None:
             ("reinforcement", "schedule"), f"there is no file '{table.schedule}' beside the brief"
         )
     return file
+
+
+def _schedule_optional(table: schema.ReinforcementTable) -> bool:
+    if table.optional and table.schedule is None:
+        raise FaultError(
+            ("reinforcement", "optional"), "is for the rows of a schedule, and none is given"
+        )
+    return table.optional
 
 
 def _mapping(table: schema.PropertiesTable) -> Mapping[ReinforcementField, str]:

@@ -126,7 +126,7 @@ def _check_line_places(path: Path, table: schema.LoadTable) -> None:
         and (first is None) != (last is None)
     ):
         raise FaultError(path, "has a load that varies: give both from and to, or neither")
-    if first is not None and last is not None and first.relative == last.relative:
+    if first is not None and last is not None and first.comparable(last):
         _check_order(path, first, last)
 
 

@@ -40,19 +40,33 @@ class Selection:
             return f"where = {self.where!r}"
         return f"beams = {', '.join(self.beams or ())}"
 
+    @property
+    def said(self) -> str:
+        """The query, the mark, or the range of marks that a part of an entry is."""
+        if self.where is not None:
+            return self.where
+        marks = self.beams or ("",)
+        return marks[0] if len(marks) == 1 else f"{marks[0]}..{marks[-1]}"
+
 
 @dataclass(frozen=True, slots=True)
 class Position:
-    """A place along a beam: [mm] from its start, or a share of its length."""
+    """A place along a beam: [mm] from its start, or a share of its length and [mm] beyond."""
 
     value: float
     relative: bool
     text: str
     """As the engineer wrote it."""
+    offset: float = 0.0
+    """Distance [mm] beyond the share of the length; negative before it."""
 
     def on(self, length: float) -> float:
         """Distance from the start [mm] on a beam of a length."""
-        return self.value * length if self.relative else self.value
+        return self.value * length + self.offset if self.relative else self.value
+
+    def comparable(self, other: Position) -> bool:
+        """Whether the values alone tell which of two places comes first, on any beam."""
+        return self.relative == other.relative and self.offset == other.offset
 
 
 @dataclass(frozen=True, slots=True)
@@ -189,6 +203,8 @@ class Brief:
     defaults: Defaults
     sources: tuple[SourceName, ...]
     schedule: Path | None
+    schedule_optional: bool
+    """True where rows of the schedule may reach no beam."""
     property_mapping: Mapping[ReinforcementField, str]
     """Field to "Set.Property"."""
     lines: Mapping[str, int]
@@ -234,6 +250,8 @@ class ScheduleRow:
     place: str
     """ "beam_schedule.csv row 7" """
     selection: Selection
+    optional: bool
+    """True where the row may reach no beam"""
     start: Position | None
     end: Position | None
     top: tuple[BarGroup, ...] | None

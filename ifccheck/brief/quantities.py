@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import math
+import re
 from typing import NamedTuple
 
 from ifccheck.brief.model import Position
@@ -48,10 +50,23 @@ def read_within(text: object, limits: Range) -> float:
     return value
 
 
+_SHARE = re.compile(
+    r"(?P<times>\d{1,4}(?:\.\d{1,6})?)?\s*L\s*(?:/\s*(?P<parts>\d{1,4}))?"
+    r"\s*(?:(?P<sign>[+-])\s*(?P<length>.+))?"
+)
+"""A share of the length as drawings have it: L/4, 3L/4, 0.4 L, L - 1.5 m."""
+
+
 def read_position(text: object) -> Position:
-    """Return a place along a beam: a length such as ``2.1 m``, or a share such as ``35 %``."""
+    """Return a place along a beam.
+
+    A length such as ``2.1 m``, or a share such as ``35 %`` or ``L/3``, which may have a length
+    added or taken off: ``L - 1.5 m`` is 1.5 m before the end.
+    """
     if not isinstance(text, str):
         return Position(parse_quantity(text, "length"), False, str(text))
+    if found := _SHARE.fullmatch(text.strip()):
+        return _share_of_length(found, text)
     relative = text.rstrip().endswith("%")
     value = parse_quantity(text, "ratio" if relative else "length")
     if value < 0.0:
@@ -59,3 +74,17 @@ def read_position(text: object) -> Position:
     if relative and value > 1.0:
         raise QuantityError(f"{clipped(text)} is beyond the end of the beam")
     return Position(value, relative, text.strip())
+
+
+def _share_of_length(found: re.Match[str], text: str) -> Position:
+    parts = int(found["parts"] or 1)
+    share = float(found["times"] or 1) / parts if parts else math.inf
+    offset = 0.0
+    if found["length"]:
+        length = parse_quantity(found["length"], "length")
+        offset = -length if found["sign"] == "-" else length
+    if share > 1.0 or (share == 1.0 and offset > 0.0):
+        raise QuantityError(f"{clipped(text)} is beyond the end of the beam")
+    if offset < 0.0 and share == 0.0:
+        raise QuantityError(f"{clipped(text)} is before the start of the beam")
+    return Position(share, True, " ".join(text.split()), offset)

@@ -2,25 +2,28 @@
 
 from __future__ import annotations
 
+import re
 from collections.abc import Callable, Mapping, Sequence
 from pathlib import Path
 from typing import TypeVar
 
 from ifccheck.beam import BarGroup
+from ifccheck.brief.mark_ranges import expanded
 from ifccheck.brief.model import Position, ScheduleRow, Selection
 from ifccheck.brief.places import did_you_mean
 from ifccheck.brief.quantities import COVER, YIELD, Range, read_position, read_within
 from ifccheck.brief.sheets import read_cells
 from ifccheck.errors import BriefError
 from ifccheck.notation import NotationError, parse_bars, parse_stirrups
-from ifccheck.units import QuantityError
+from ifccheck.units import QuantityError, clipped
 
 COLUMNS = (
     "mark", "from", "to", "top", "bottom", "side", "stirrups", "cover", "bar_yield",
-    "stirrup_yield",
+    "stirrup_yield", "optional",
 )  # fmt: skip
-STATING = COLUMNS[3:]
+STATING = COLUMNS[3:-1]
 """Columns of which a row must fill at least one."""
+_ANSWERS = {"yes": True, "true": True, "no": False, "false": False}
 
 Parsed = TypeVar("Parsed")
 Cells = Mapping[str, str]
@@ -29,10 +32,10 @@ Cells = Mapping[str, str]
 def read_schedule(path: Path) -> tuple[ScheduleRow, ...]:
     """Read a beam schedule; raise BriefError naming file, row and column.
 
-    Columns: mark (marks apart by commas, ``*`` as wildcard), from and to (places along the
-    beam, the whole of it where empty), top, bottom, side and stirrups in bar notation, cover,
-    bar_yield and stirrup_yield with their units. An empty cell says nothing; ``none`` says
-    that there is none.
+    Columns: mark (marks apart by commas, ``*`` as wildcard, ``B-201..B-204`` as range), from and
+    to (places along the beam, the whole of it where empty), top, bottom, side and stirrups in
+    bar notation, cover, bar_yield and stirrup_yield with their units, optional (``yes`` where
+    the row may reach no beam). An empty cell says nothing; ``none`` says that there is none.
     """
     table = read_cells(path)
     if not table:
@@ -75,6 +78,7 @@ def _row(place: str, cells: Cells) -> ScheduleRow:
     return ScheduleRow(
         place=place,
         selection=Selection(beams=_marks(place, cells)),
+        optional=_read(place, cells, "optional", _yes_or_no) or False,
         start=start,
         end=end,
         top=_bars(place, cells, "top"),
@@ -89,14 +93,25 @@ def _row(place: str, cells: Cells) -> ScheduleRow:
 
 
 def _marks(place: str, cells: Cells) -> tuple[str, ...]:
-    marks = tuple(mark.strip() for mark in cells.get("mark", "").split(","))
+    marks = tuple(mark.strip() for mark in re.split(r"[,\n]", cells.get("mark", "")))
     if not all(marks):
         raise BriefError(f"{place} mark: is empty: name the beam that the row is for")
+    for mark in marks:
+        try:
+            expanded(mark)
+        except ValueError as error:
+            raise BriefError(f"{place} mark: {error}") from None
     return marks
 
 
+def _yes_or_no(text: str) -> bool:
+    if text.lower() not in _ANSWERS:
+        raise QuantityError(f"{clipped(text)} is neither yes nor no")
+    return _ANSWERS[text.lower()]
+
+
 def _check_order(place: str, start: Position | None, end: Position | None) -> None:
-    if start and end and start.relative == end.relative and start.value >= end.value:
+    if start and end and start.comparable(end) and start.value >= end.value:
         raise BriefError(f"{place} to: '{end.text}' is not beyond from = '{start.text}'")
 
 

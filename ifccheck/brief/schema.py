@@ -6,6 +6,7 @@ from collections.abc import Callable
 from typing import Annotated, Any
 
 from pydantic import (
+    AfterValidator,
     BaseModel,
     ConfigDict,
     Field,
@@ -14,6 +15,7 @@ from pydantic import (
 )
 
 from ifccheck.beam import CombinationKind, Face, Nature, SourceName, SupportKind
+from ifccheck.brief.mark_ranges import expanded
 from ifccheck.brief.model import Position, SlabFlange
 from ifccheck.brief.quantities import (
     CONCRETE_STRENGTH,
@@ -139,6 +141,7 @@ class ReinforcementTable(Table):
 
     sources: list[SourceName] | None = Field(default=None, min_length=1)
     schedule: Name | None = None
+    optional: bool = False
     properties: PropertiesTable = Field(default_factory=PropertiesTable)
 
 
@@ -152,6 +155,12 @@ class CaseTable(Table):
     removable: bool = False
 
 
+def _mark(text: str) -> str:
+    expanded(text)
+    return text
+
+
+Mark = Annotated[Name, AfterValidator(_mark)]
 Query = Annotated[str, StringConstraints(min_length=1, max_length=2000)]
 
 
@@ -166,7 +175,7 @@ class ScopeTable(Table):
 class SelectingTable(Table):
     """What every entry with a selection has."""
 
-    beams: list[Name] | None = Field(default=None, min_length=1)
+    beams: list[Mark] | None = Field(default=None, min_length=1)
     where: Query | None = None
     optional: bool = False
 

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Iterator, Mapping, Sequence
 
+from ifccheck.brief.mark_ranges import expanded
 from ifccheck.brief.model import Brief, Entry, ScheduleRow, Selection
 from ifccheck.errors import BriefError
 from ifccheck.units import clipped
@@ -25,17 +26,22 @@ def parts_of(entry: Entry | ScheduleRow) -> Iterator[tuple[str, Selection]]:
     if entry.selection.where is not None:
         yield f"{entry.place}.where", entry.selection
     for index, mark in enumerate(entry.selection.beams or (), 1):
-        yield f"{entry.place}.beams[{index}]", Selection(beams=(mark,))
+        yield f"{entry.place}.beams[{index}]", Selection(beams=expanded(mark))
 
 
 def join(brief: Brief, rows: Sequence[ScheduleRow], found: Found) -> dict[str, tuple[str, ...]]:
-    """Return the keys of the beams that each entry and row reaches, each beam once."""
-    return {
+    """Return the keys of the beams that each entry and row reaches, each beam once.
+
+    What each single mark of a row reaches is kept beside.
+    """
+    entries = {
         entry.place: tuple(
             dict.fromkeys(key for place, _ in parts_of(entry) for key in found[place])
         )
         for entry in (*brief.entries(), *rows)
     }
+    marks = {place: tuple(found[place]) for row in rows for place, _ in parts_of(row)}
+    return {**entries, **marks}
 
 
 def check_scope(brief: Brief, reached: Sequence[Mapping[str, int]]) -> None:
@@ -61,8 +67,30 @@ def check_reached(brief: Brief, found: Sequence[Found]) -> None:
         for place, part in parts_of(entry):
             if not entry.optional and not any(of_model[place] for of_model in found):
                 key = "where" if part.where is not None else "beams"
-                said = part.where if part.where is not None else (part.beams or ("",))[0]
                 raise BriefError(
-                    f"{brief.where(entry, key)}: {clipped(said, 120)} reaches no beam: correct it,"
-                    " or write optional = true"
+                    f"{brief.where(entry, key)}: {clipped(part.said, 120)} reaches no beam:"
+                    " correct it, or write optional = true"
                 )
+
+
+def check_rows_reached(brief: Brief, rows: Sequence[ScheduleRow], found: Sequence[Found]) -> None:
+    """Raise BriefError for a mark of the schedule that reaches no beam in any model of the run.
+
+    A row that says so in its column ``optional``, or any row where the brief says so, may.
+    """
+    for row in rows:
+        if brief.schedule_optional or row.optional:
+            continue
+        for part in unreached(row, found):
+            raise BriefError(
+                f"{row.place} mark: {clipped(part.said, 120)} reaches no beam: correct it, or write"
+                " yes for it in a column 'optional', or optional = true under [reinforcement] of"
+                f" {brief.file_name}"
+            )
+
+
+def unreached(row: ScheduleRow, found: Sequence[Found]) -> Iterator[Selection]:
+    """The marks of a row that reach no beam in any model of the run."""
+    for place, part in parts_of(row):
+        if not any(of_model[place] for of_model in found):
+            yield part

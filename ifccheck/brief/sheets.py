@@ -10,6 +10,7 @@ from typing import Any
 
 from ifccheck.brief.files import read_bytes, read_text
 from ifccheck.errors import BriefError
+from ifccheck.units import clipped
 
 GREATEST_ROWS, GREATEST_COLUMNS = 100_000, 200
 GREATEST_UNPACKED = 512 * 1024 * 1024
@@ -59,9 +60,11 @@ def _xlsx(path: Path) -> list[list[str]]:
     sheet = _schedule_sheet(book, path.name)
     try:
         return [
-            [_text(cell) for cell in row[:GREATEST_COLUMNS]]
-            for row in sheet.iter_rows(values_only=True, max_row=GREATEST_ROWS + 1)
+            [_text(cell, path.name) for cell in row[:GREATEST_COLUMNS]]
+            for row in sheet.iter_rows(max_row=GREATEST_ROWS + 1)
         ]
+    except BriefError:
+        raise
     except Exception as error:
         raise BriefError(
             f"{path.name}: not a readable XLSX sheet ({_oneline(error)}); {_SAVE}"
@@ -84,12 +87,26 @@ def _schedule_sheet(book: Any, file_name: str) -> Any:
     return named[0]
 
 
-def _text(value: object) -> str:
-    if value is None:
-        return ""
-    if isinstance(value, float) and value.is_integer():
-        return str(int(value))
-    return str(value)
+def _text(cell: Any, file_name: str) -> str:
+    """What a cell shows, where it is text or a plain number; anything else is refused."""
+    value = cell.value
+    if value is None or (isinstance(value, str) and cell.data_type not in _NO_TEXT):
+        return value or ""
+    number = isinstance(value, int | float) and not isinstance(value, bool)
+    if number and "%" in cell.number_format:
+        return f"{round(100.0 * value, 9):.12g} %"
+    if number:
+        return f"{value:.12g}" if isinstance(value, float) else str(value)
+    if isinstance(value, bool):
+        return "yes" if value else "no"
+    what = _NO_TEXT.get(cell.data_type, "a date or time")
+    raise BriefError(
+        f"{file_name} row {cell.row} column {cell.column_letter}: holds {what}"
+        f" ({clipped(str(value))}): make the cell text and write there what is meant"
+    )
+
+
+_NO_TEXT = {"f": "a formula", "e": "an error"}
 
 
 def _check_archive(content: bytes, file_name: str) -> None:

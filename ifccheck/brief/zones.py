@@ -1,21 +1,26 @@
-"""The beam schedule laid on the beams: described zones of reinforcement."""
+"""The beam schedule laid on the beams: described zones of reinforcement.
+
+A row that names a beam by its own mark goes before rows that reach it by a wildcard or a range,
+field by field, where both hold. Rows of one rank that speak of the same thing contradict each
+other.
+"""
 
 from __future__ import annotations
 
-from collections.abc import Mapping, Sequence
+from collections.abc import Mapping, Sequence, Set
 from dataclasses import replace
 from itertools import combinations
 
 from ifccheck.beam import Beam, DescribedZone, Reason, Reinforcement, Remark
+from ifccheck.brief.mark_ranges import is_exact
 from ifccheck.brief.merging import Matches
 from ifccheck.brief.model import Position, ScheduleRow
-from ifccheck.brief.selecting import Found, parts_of
+from ifccheck.brief.selecting import Found, parts_of, unreached
+from ifccheck.brief.zone_ranks import STEEL, VALUES, by_rank, extent, speaks
 from ifccheck.units import show
 
 TOLERANCE = 1.0
 """Distance [mm] by which a zone may lie beyond the end of a beam, or over another zone."""
-STEEL = ("top", "bottom", "side", "stirrups")
-VALUES = ("cover", "bar_yield", "stirrup_yield")
 
 
 def with_schedule(
@@ -26,13 +31,18 @@ def with_schedule(
     Rows that contradict each other, or reach beyond the beam, become reasons not to rate it.
     """
     rows_of: dict[str, list[ScheduleRow]] = {}
+    exact = {
+        (row.place, key)
+        for row in rows
+        for place, part in parts_of(row)
+        if is_exact(part.beams)
+        for key in matches[place]
+    }
     for row in rows:
         for key in matches[row.place]:
             rows_of.setdefault(key, []).append(row)
     return {
-        key: replace(beam, reinforcement=(*beam.reinforcement, _described(beam, rows_of[key])))
-        if key in rows_of
-        else beam
+        key: _with_rows(beam, rows_of[key], exact) if key in rows_of else beam
         for key, beam in beams.items()
     }
 
@@ -43,20 +53,24 @@ def schedule_remarks(rows: Sequence[ScheduleRow], found: Sequence[Found]) -> tup
         Remark(
             None,
             "schedule",
-            f"{row.place}: no beam is marked {' '.join(part.beams or ())}, the row is not used",
+            f"{row.place}: no beam is marked {part.said}, the row is not used",
             "doubt",
         )
         for row in rows
-        for place, part in parts_of(row)
-        if not any(of_model[place] for of_model in found)
+        for part in unreached(row, found)
     )
 
 
-def _described(beam: Beam, rows: Sequence[ScheduleRow]) -> Reinforcement:
-    zones = tuple(_zone(beam, row) for row in rows)
-    return Reinforcement(
-        source="schedule", zones=zones, reasons=(*_beyond(beam, zones), *_conflicts(beam, zones))
-    )
+def _with_rows(beam: Beam, rows: Sequence[ScheduleRow], exact: Set[tuple[str, str]]) -> Beam:
+    own = [_zone(beam, row) for row in rows if (row.place, beam.key) in exact]
+    wide = [_zone(beam, row) for row in rows if (row.place, beam.key) not in exact]
+    reasons = (*_beyond(beam, [*own, *wide]), *_conflicts(beam, own), *_conflicts(beam, wide))
+    if own and wide and beam.axis and not reasons:
+        zones, remarks = by_rank(beam, own, wide)
+    else:
+        zones, remarks = tuple(_zone(beam, row) for row in rows), ()
+    described = Reinforcement("schedule", zones=zones, reasons=reasons, remarks=remarks)
+    return replace(beam, reinforcement=(*beam.reinforcement, described))
 
 
 def _zone(beam: Beam, row: ScheduleRow) -> DescribedZone:
@@ -79,21 +93,19 @@ def _place(beam: Beam, position: Position | None) -> float | None:
     if position is None or beam.axis is None:
         return None
     x = position.on(beam.length)
-    return min(x, beam.length) if x <= beam.length + TOLERANCE else x
-
-
-def _extent(beam: Beam, zone: DescribedZone) -> tuple[float, float]:
-    return (
-        0.0 if zone.start is None else zone.start,
-        beam.length if zone.end is None else zone.end,
-    )
+    if -TOLERANCE <= x <= beam.length + TOLERANCE:
+        return min(max(x, 0.0), beam.length)
+    return x
 
 
 def _beyond(beam: Beam, zones: Sequence[DescribedZone]) -> list[Reason]:
     reasons = []
     for zone in zones:
-        start, end = _extent(beam, zone)
-        if end > beam.length + TOLERANCE:
+        start, end = extent(beam, zone)
+        if start < -TOLERANCE:
+            text = f"{zone.origin}: begins {show(-start, 'length')} before the beam's start"
+            reasons.append(Reason(text))
+        elif end > beam.length + TOLERANCE:
             text = f"{zone.origin}: reaches to {show(end, 'length')}, beyond the beam's end"
             reasons.append(Reason(text))
         elif beam.axis is not None and end <= start:
@@ -105,20 +117,16 @@ def _conflicts(beam: Beam, zones: Sequence[DescribedZone]) -> list[Reason]:
     """Rows that speak of the same thing at the same place: bars twice, or unequal values."""
     reasons = []
     for one, other in combinations(zones, 2):
-        (a, b), (c, d) = _extent(beam, one), _extent(beam, other)
+        (a, b), (c, d) = extent(beam, one), extent(beam, other)
         if min(b, d) - max(a, c) <= TOLERANCE:
             continue
-        both = [name for name in STEEL if _speaks(one, name) and _speaks(other, name)]
+        both = [name for name in STEEL if speaks(one, name) and speaks(other, name)]
         both += [name for name in VALUES if _differ(getattr(one, name), getattr(other, name))]
         if both:
             words = ", ".join(name.replace("_", " ") for name in both)
             where = f"between {show(max(a, c), 'length')} and {show(min(b, d), 'length')}"
             reasons.append(Reason(f"{one.origin} and {other.origin} both give {words} {where}"))
     return reasons
-
-
-def _speaks(zone: DescribedZone, name: str) -> bool:
-    return getattr(zone, name) is not None or (name == "stirrups" and zone.no_stirrups)
 
 
 def _differ(one: float | None, other: float | None) -> bool:

@@ -199,7 +199,7 @@ def _kinds(segment: Segment, place: Place, findings: _Findings) -> list[Kind]:
         origins = " and ".join(zone.origin for zone in speaking)
         findings.reasons.append(Reason(f"{place} bars given twice: {origins}"))
     kinds = [
-        Kind(place, g.diameter, g.area, g.designation, zone.bar_yield, zone.origin)
+        Kind(place, g.diameter, g.area, g.designation, _bar_yield(segment, zone), zone.origin)
         for zone in speaking[:1]
         for g in getattr(zone, place)
         for _ in range(g.count)
@@ -209,6 +209,21 @@ def _kinds(segment: Segment, place: Place, findings: _Findings) -> list[Kind]:
 
 def _has_row_at(segment: Segment, face: Face) -> bool:
     return any(row.face == face for zone in segment.zones for row in zone.rows)
+
+
+def _bar_yield(segment: Segment, zone: DescribedZone) -> float | None:
+    """Of the zone itself, else of those that give the yield here and no bars of their own."""
+    apart = [z.bar_yield for z in segment.zones if z.bar_yield is not None and not _has_bars(z)]
+    return zone.bar_yield if zone.bar_yield is not None else min(apart, default=None)
+
+
+def _has_bars(zone: DescribedZone) -> bool:
+    return bool(zone.rows) or any(getattr(zone, place) is not None for place in PLACES)
+
+
+def _stirrup_yield(segment: Segment, zone: DescribedZone) -> float | None:
+    apart = [z.stirrup_yield for z in segment.zones if z.stirrup_yield and z.stirrups is None]
+    return zone.stirrup_yield if zone.stirrup_yield is not None else min(apart, default=None)
 
 
 def _cover(
@@ -282,7 +297,7 @@ def _stirrups(segments: Sequence[Segment], covers: Sequence[float | None]) -> It
                 continue
             group = zone.stirrups
             soffit, top = soffit_and_top(segment.outline)
-            stated = zone.stirrup_yield
+            stated = _stirrup_yield(segment, zone)
             yield Stirrups(
                 start=segment.start,
                 end=segment.end,
