@@ -13,6 +13,7 @@ from ifccheck.beam import (
     Anchor,
     Axis,
     BarGroup,
+    BarRow,
     Bars,
     Beam,
     DescribedZone,
@@ -460,6 +461,16 @@ def test_steel_that_only_the_source_not_used_states_is_told():
         "schedule used; bars differs: top bars 600 mm2, not stated by schedule;"
         " stirrups 200 mm2 at 250 mm, 800 mm2/m, not stated by schedule"
     )
+
+
+def test_rows_whose_height_is_given_count_at_their_face():
+    group = BarGroup(2, "25M", 25.2, 500.0)
+    rows = DescribedZone(rows=(BarRow("bottom", group, 60.0), BarRow("bottom", group, 110.0)))
+    both = beam(reinforcement=(described("sections", rows), says("bars", bars=(5, 500.0))))
+    [remark] = choose_source(both, ("sections", "bars")).remarks
+    assert remark.text.endswith("bottom bars 2500 mm2 against 2000 mm2 (+25 %)")
+    agreeing = beam(reinforcement=(described("sections", rows), says("bars")))
+    assert choose_source(agreeing, ("sections", "bars")).remarks == ()
 
 
 def test_many_stretches_are_told_in_short():
