@@ -151,9 +151,15 @@ class Bars:
     yield_strength: Given | None = None
     start_anchor: Anchor = Anchor.STRAIGHT
     end_anchor: Anchor = Anchor.STRAIGHT
+    """How the bars themselves end, be it beyond ``start`` and ``end``."""
     designation: str = ""
     origin: str = ""
     """The entity, property or schedule row that it was read from."""
+    start_beyond: float = 0.0
+    """How far the same bars go on beyond ``start``, bent or sloping, along themselves [mm]."""
+    end_beyond: float = 0.0
+    along: float = 1.0
+    """Part of their strength that acts along the axis."""
 
 
 @dataclass(frozen=True, slots=True)

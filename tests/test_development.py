@@ -146,6 +146,21 @@ def test_stress_rises_from_either_end(x, expected) -> None:
     assert fraction(x) == pytest.approx(expected)
 
 
+@pytest.mark.parametrize(("x", "expected"), [(2000.0, 0.5), (2300.0, 1.0), (1999.0, 0.0)])
+def test_a_bar_that_goes_on_elsewhere_develops_there_too(x, expected) -> None:
+    """Of 600 mm that it takes, 300 are bonded before it comes to where it is counted."""
+    found = developed_fraction(
+        x=np.array(x),
+        side=np.array(0),
+        bar_start=np.array(2000.0),
+        bar_end=np.array(9000.0),
+        start_length=np.array(600.0),
+        end_length=np.array(600.0),
+        start_beyond=np.array(300.0),
+    )
+    assert float(found) == pytest.approx(expected)
+
+
 def test_short_bar_never_reaches_its_yield() -> None:
     """1 m long, 600 mm at either end: at most 5/6."""
     values = [fraction(x, end=1000.0, last=600.0) for x in np.linspace(0, 1000, 101)]

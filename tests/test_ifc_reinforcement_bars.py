@@ -229,28 +229,48 @@ def test_bent_up_parts_are_not_counted_and_said() -> None:
         pytest.approx((540.0, 50.0, 1000.0 - cut)),
         pytest.approx((540.0, 5000.0 + cut, 5950.0)),
     ]
+    # chords are a little shorter than their arcs
+    inclined = 2.0 * 80.0 * math.radians(45.0) + 480.0 * math.sqrt(2.0) - 2.0 * cut
+    far = 1000.0 - cut - 50.0
+    assert [(b.start_beyond, b.end_beyond) for b in found.bars] == [
+        pytest.approx((inclined + far, inclined + far), abs=2.0),
+        pytest.approx((0.0, 2.0 * inclined + 3040.0 - 2.0 * cut + far), abs=2.0),
+        pytest.approx((2.0 * inclined + 3040.0 - 2.0 * cut + far, 0.0), abs=2.0),
+    ]
     assert all(b.start_anchor is b.end_anchor is Anchor.STRAIGHT for b in found.bars)
     assert "inclined parts are not counted" in found.remarks
     assert found.reasons == ""
 
 
-def test_a_bar_that_slopes_is_taken_where_it_does_least() -> None:
+def test_a_bar_that_slopes_is_taken_in_pieces_where_each_does_least() -> None:
     model = ModelWithBars()
     beam = model.beam()
-    low = Curve(((50.0, 0.0, 60.0), (5950.0, 0.0, 100.0)))
-    high = Curve(((50.0, 50.0, 550.0), (5950.0, 50.0, 500.0)))
+    low = Curve(((50.0, 0.0, 60.0), (5950.0, 0.0, 80.0)))
+    high = Curve(((5950.0, 50.0, 500.0), (50.0, 50.0, 520.0)))
     model.bars(beam, low, high)
     found = model.read(beam)
-    assert [b.z for b in found.bars] == pytest.approx([100.0, 500.0])
+    assert [(b.z, b.start, b.end) for b in found.bars] == [
+        pytest.approx((70.0, 50.0, 3000.0)),
+        pytest.approx((80.0, 3000.0, 5950.0)),
+        pytest.approx((500.0, 3000.0, 5950.0)),
+        pytest.approx((510.0, 50.0, 3000.0)),
+    ]
+    assert {(b.start_beyond, b.end_beyond) for b in found.bars} == {(0.0, 2950.0), (2950.0, 0.0)}
+    assert {b.along for b in found.bars} == {1.0}
     assert "slopes" in found.remarks
 
 
-def test_a_bar_through_the_middle_is_not_counted() -> None:
+def test_a_bar_through_the_middle_is_not_counted_there() -> None:
     model = ModelWithBars()
     beam = model.beam()
-    model.bars(beam, Curve(((50.0, 0.0, 220.0), (5950.0, 0.0, 380.0))), straight(50, 5950, 0, 60))
+    model.bars(beam, Curve(((50.0, 0.0, 245.0), (5950.0, 0.0, 355.0))), straight(50, 5950, 0, 60))
     found = model.read(beam)
-    assert [b.z for b in found.bars] == pytest.approx([60.0])
+    lower, *pieces = found.bars
+    assert lower.z == 60.0
+    below, above = [b for b in pieces if b.z < 300.0], [b for b in pieces if b.z > 300.0]
+    assert max(b.z for b in below) == pytest.approx(295.0)
+    assert min(b.z for b in above) == pytest.approx(305.0)
+    assert min(b.start for b in above) - max(b.end for b in below) > 500.0
     assert "crosses the middle" in found.remarks
 
 

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
 from typing import Protocol
@@ -74,6 +75,7 @@ def net_of(
     if not beam.openings:
         return _without_openings(beam, slab)
     impossible = [*_tapered(beam), *_cut_bars(beam.openings, steel.bars)]
+    impossible += _cut_bends(beam.openings, steel.bars)
     runs, gone = net_runs(with_flanges(beam.runs, slab.flanges), beam.openings)
     if impossible or gone:
         return Net(reasons=(*impossible, *gone), remarks=slab.remarks)
@@ -128,6 +130,40 @@ def _cut_bars(openings: Sequence[Opening], bars: Sequence[Bars]) -> Iterator[Rea
                 count = f"{len(cut)} bar{'s' if len(cut) > 1 else ''}"
                 place = show(layer.z, "dimension")
                 yield Reason(f"{count} at z = {place} would run through the {place_of(opening)}")
+
+
+def _cut_bends(openings: Sequence[Opening], bars: Sequence[Bars]) -> Iterator[Reason]:
+    """Bars that may run through an opening where they are bent from one height to another."""
+    for start, end, low, high in _bends(bars):
+        for opening in openings:
+            level = low < opening.top and high > opening.bottom
+            if level and start < opening.end and end > opening.start:
+                yield Reason(f"bars that are bent may run through the {place_of(opening)}")
+
+
+def _bends(bars: Sequence[Bars]) -> Iterator[tuple[float, float, float, float]]:
+    """Where bars go on between their level parts: the box round that, of any height where no
+    next part is found [mm]."""
+    for layer in bars:
+        r = layer.diameter / 2.0
+        after = [
+            one
+            for one in bars
+            if one.start_beyond > 0.0 and layer.end <= one.start <= layer.end + layer.end_beyond
+        ]
+        if layer.end_beyond > 0.0 and after:
+            next_part = min(after, key=lambda one: one.start)
+            low, high = sorted((layer.z, next_part.z))
+            yield layer.end, next_part.start, low - r, high + r
+        elif layer.end_beyond > 0.0:
+            yield layer.end, layer.end + layer.end_beyond, -math.inf, math.inf
+        before = [
+            one
+            for one in bars
+            if one.end_beyond > 0.0 and layer.start - layer.start_beyond <= one.end <= layer.start
+        ]
+        if layer.start_beyond > 0.0 and not before:
+            yield layer.start - layer.start_beyond, layer.start, -math.inf, math.inf
 
 
 def _upward(loads: Sequence[Load]) -> bool:

@@ -74,8 +74,8 @@ class _Counted:
             self.start[second] = max(self.start[second], self.end[first] - LAP)
 
 
-def without_clashes(model: Measured, runs: Runs, beam: Ints, taken: Bools) -> tuple[Runs, Bools]:
-    """Count steel once where runs that are ``taken`` are drawn through one another.
+def without_clashes(model: Measured, runs: Runs, beam: Ints) -> tuple[Runs, Bools]:
+    """Count steel once where runs are drawn through one another.
 
     Returns the runs, some shortened, and which of them count (M).
     """
@@ -85,20 +85,26 @@ def without_clashes(model: Measured, runs: Runs, beam: Ints, taken: Bools) -> tu
         runs.end.copy(),
         runs.start_hook.copy(),
         runs.end_hook.copy(),
-        taken.copy(),
+        np.ones(len(runs.row), dtype=bool),
         diameter,
         np.rint(np.abs(np.diff(runs.line[:, :, 1:], axis=1)).max(axis=(1, 2)) / LEAN),
         np.zeros(len(diameter)),
     )
-    pairs = [pair for pair in _clashes(runs, beam, diameter) if taken[list(pair)].all()]
+    pairs = list(_clashes(runs, beam, diameter))
     if not pairs:
-        return runs, taken
+        return runs, held.counted
     for run in {run for pair in pairs for run in pair}:
         held.force[run] = _force(model, int(runs.row[run]))
     for one, other in pairs:
         _settle(model, runs, held, one, other)
     cut = replace(
-        runs, start=held.start, end=held.end, start_hook=held.start_hook, end_hook=held.end_hook
+        runs,
+        start=held.start,
+        end=held.end,
+        start_hook=held.start_hook,
+        end_hook=held.end_hook,
+        start_beyond=np.where(held.start == runs.start, runs.start_beyond, 0.0),
+        end_beyond=np.where(held.end == runs.end, runs.end_beyond, 0.0),
     )
     return cut, held.counted
 

@@ -1,9 +1,9 @@
-"""Longitudinal bars: straight runs along the beam, how their ends are anchored, equal bars."""
+"""Longitudinal bars: straight runs along the beam, and how their ends are anchored."""
 
 from __future__ import annotations
 
 import math
-from dataclasses import dataclass
+from dataclasses import dataclass, fields
 
 import numpy as np
 
@@ -30,10 +30,6 @@ LONGEST_CHORD = 6.0
 BEND_DIAMETERS, BEND_RADII = (26.0, 36.0), (3.6, 4.7, 5.9)
 """Radius of the centre line of a least bend, in diameters, up to each diameter [mm]
 (CSA A23.1, grade 400R, from memory): what a corner drawn sharp takes from a tail."""
-LEVEL = 2.0
-"""A run rises by no more than this [mm] and is still level."""
-SAME_LAYER, SAME_END = 1.0, 5.0
-"""Bars of one layer differ by no more than this in height, and at their ends [mm]."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -55,14 +51,25 @@ class Runs:
     """The bar goes on round a bend at either end, short of a standard hook."""
     line: Floats
     """Where the straight run begins and ends, in order of x [mm] (M, 2, 3)."""
+    start_beyond: Floats
+    """Length of the bar beyond its start where it goes on bent, by less than a square [mm]."""
+    end_beyond: Floats
+
+    def take(self, kept: Ints) -> Runs:
+        """Some of the runs; they may repeat."""
+        return Runs(*(getattr(self, one.name)[kept] for one in fields(self)))
 
 
-def find_runs(lines: CentreLines, pieces: Pieces) -> Runs:
-    """Find the runs along the beam: pieces within 2 degrees of the axis, 20 diameters long."""
-    along = pieces.straight & (np.abs(pieces.direction[:, 0]) >= ALONG)
+def find_runs(lines: CentreLines, pieces: Pieces, leaning: Bools) -> Runs:
+    """Find the runs along the beam: pieces within 2 degrees of the axis, and those ``leaning`` with
+    it (P), 20 diameters long."""
+    level = pieces.straight & (np.abs(pieces.direction[:, 0]) >= ALONG)
+    along = level | leaning
     before = pieces.neighbour(-1)
     follows = along & (before >= 0) & along[before]
     follows &= pieces.direction[:, 0] * pieces.direction[before, 0] > 0.0
+    turn = dots(pieces.direction, pieces.direction[before]) if len(before) else np.zeros(0)
+    follows &= (level & level[before]) | (turn >= ALONG)
     joined = pieces.merged(~follows)
     first = np.flatnonzero(~follows)
     heights = np.stack([pieces.start[:, 2], pieces.end[:, 2]])
@@ -79,6 +86,10 @@ def _ended(pieces: Pieces, run: Ints, diameter: Floats, lowest: Floats, highest:
     forward = pieces.direction[run, 0] > 0.0
     drawn = np.stack([pieces.start[run], pieces.end[run]], axis=1)
     (back_x, back_hook, back_bend), (fore_x, fore_hook, fore_bend) = ends
+    back, fore = (
+        np.where(hook | bend, 0.0, _beyond(pieces, run, step))
+        for step, (_, hook, bend) in zip((-1, 1), ends, strict=True)
+    )
     return Runs(
         row=pieces.row[run],
         start=np.where(forward, back_x, fore_x),
@@ -90,7 +101,24 @@ def _ended(pieces: Pieces, run: Ints, diameter: Floats, lowest: Floats, highest:
         end_hook=np.where(forward, fore_hook, back_hook),
         poor_bend=back_bend | fore_bend,
         line=np.where(forward[:, None, None], drawn, drawn[:, ::-1]),
+        start_beyond=np.where(forward, back, fore),
+        end_beyond=np.where(forward, fore, back),
     )
+
+
+def _beyond(pieces: Pieces, run: Ints, step: int) -> Floats:
+    """Length of bars beyond one end of their runs, as far as they do not turn off by a square."""
+    outward = pieces.direction[run] * step
+    length = np.zeros(len(run))
+    neighbour = pieces.neighbour(step)
+    left = np.flatnonzero(neighbour[run] >= 0)
+    at = neighbour[run[left]]
+    while len(left):
+        goes_on = dots(pieces.direction[at] * step, outward[left]) > SQUARE_TURN
+        left, at = left[goes_on], at[goes_on]
+        length[left] += pieces.length[at]
+        left, at = left[neighbour[at] >= 0], neighbour[at[neighbour[at] >= 0]]
+    return length
 
 
 def _follow_end(
@@ -145,18 +173,6 @@ def bend_radius(diameter: Floats) -> Floats:
     return np.asarray(times * diameter)
 
 
-def settle_heights(runs: Runs, middle: Floats) -> tuple[Floats, Bools]:
-    """Return the height that each run is taken at, and whether it is too steep to be taken.
-
-    A run that is not level is taken at its place nearest to the middle of the section [mm] (M),
-    where it does least; one that passes the middle is not taken.
-    """
-    level = runs.highest - runs.lowest <= LEVEL
-    inner = np.where(runs.highest <= middle, runs.highest, runs.lowest)
-    steep = ~level & (runs.highest > middle) & (runs.lowest < middle)
-    return np.where(level, (runs.highest + runs.lowest) / 2.0, inner), steep
-
-
 def group(labels: Ints, values: Floats, gap: float) -> Ints:
     """Split groups where sorted values differ by more than ``gap``; returns new labels."""
     order = np.lexsort((values, labels))
@@ -165,15 +181,3 @@ def group(labels: Ints, values: Floats, gap: float) -> Ints:
     found = np.empty(len(order), dtype=np.intp)
     found[order] = np.cumsum(split) - 1
     return found
-
-
-def equal_bars(labels: Ints, runs: Runs, height: Floats) -> tuple[Ints, Ints]:
-    """Group runs of one label that lie in one layer with equal ends.
-
-    Returns the runs in the order of groups, in each from right to left across the beam, and the
-    place at which each group begins.
-    """
-    found = group(group(labels, height, SAME_LAYER), runs.start, SAME_END)
-    found = group(found, runs.end, SAME_END)
-    order = np.lexsort((runs.y, found))
-    return order, np.flatnonzero(np.diff(found[order], prepend=-1))

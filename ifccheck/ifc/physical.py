@@ -10,6 +10,7 @@ import numpy as np
 from ifccheck.beam import Bars, Stirrups
 from ifccheck.ifc.bar_findings import Findings
 from ifccheck.ifc.bar_groups import longitudinal_bars
+from ifccheck.ifc.bar_levels import leaning_with_tapers
 from ifccheck.ifc.bar_outlines import FIT_TOLERANCE, legs_outside, runs_outside
 from ifccheck.ifc.bar_paths import Bools, Floats, Ints
 from ifccheck.ifc.bar_pieces import CentreLines, count_by_row
@@ -27,6 +28,7 @@ SKEWED = 0.966
 END_TOLERANCE = 5.0
 """A stirrup may lie beyond the end of its beam by this [mm]."""
 OUTSIDE = "lies outside the concrete of the beam"
+BENT_UP = "inclined parts are not counted, neither along the beam nor in shear"
 MAIN_ROLES, TIE_ROLES = frozenset({"MAIN", "EDGE"}), frozenset({"LIGATURE", "RING"})
 
 
@@ -92,10 +94,12 @@ def _along(model: Measured) -> dict[int, tuple[Bars, ...]]:
     """Bars that do not lie square to their beams."""
     if not model.lines.count:
         return {}
-    runs = find_runs(model.lines, model.pieces)
+    beam = model.rows.beam[model.pieces.row]
+    leaning = leaning_with_tapers(model.places.frames, beam, model.pieces)
+    runs = find_runs(model.lines, model.pieces, leaning)
     is_main = np.zeros(model.lines.count, dtype=bool)
     is_main[runs.row] = True
-    _judge_others(model, is_main)
+    _judge_others(model, is_main, leaning)
     _judge_roles(model, is_main, TIE_ROLES, "a stirrup by its role, but runs along the beam")
     model.reason(np.flatnonzero(_run_outside(model, runs)), OUTSIDE)
     _judge_data(model, is_main)
@@ -141,15 +145,15 @@ def _find_ties(model: Measured) -> tuple[Ties, Legs]:
     return find_ties(model.lines, model.pieces, bounds[:, 2], height)
 
 
-def _judge_others(model: Measured, is_main: Bools) -> None:
+def _judge_others(model: Measured, is_main: Bools, leaning: Bools) -> None:
     """Tell of bars, and parts of bars, that are neither along nor square to the beam."""
     pieces, rows = model.pieces, model.lines.count
     thick = model.lines.diameter[pieces.row]
     slope = np.abs(pieces.direction[:, 0])
     long = pieces.straight & (pieces.length > LONGEST_CHORD * thick)
     inclined = long & (slope < ALONG) & (slope > np.sqrt(1.0 - ALONG**2))
-    bent_up = count_by_row(pieces.row, inclined & is_main[pieces.row], rows) > 0
-    model.remark(np.flatnonzero(bent_up), "inclined parts are not counted")
+    bent_up = count_by_row(pieces.row, inclined & ~leaning & is_main[pieces.row], rows) > 0
+    model.remark(np.flatnonzero(bent_up), BENT_UP)
     other = ~is_main
     lengths = np.bincount(pieces.row, pieces.length, rows)
     short = other & (lengths <= LEAST_RUN * model.lines.diameter)

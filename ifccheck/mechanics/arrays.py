@@ -58,6 +58,9 @@ class Members:
     overhang_right: Floats
     flange_thickness: Floats
     """Thickness of that flange [mm] (K); 0 without one"""
+    layer_beyond: Floats | None = None
+    """Length of the same bars beyond start and end of the layer [mm] (B, L, 2), where they go on
+    bent or at another height and develop too; None where none does"""
 
 
 @dataclass(frozen=True, slots=True)

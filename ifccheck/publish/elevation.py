@@ -189,8 +189,8 @@ def _bar_row(index: int, row: Sequence[Bars], frame: Frame) -> str:
         segment(frame.x(bars.start), frame.z(bars.z), frame.x(bars.end), frame.z(bars.z))
         for bars in row
     )
-    ends = ((frame.x(first.start), first, first.start_anchor),
-            (frame.x(last.end), last, last.end_anchor))  # fmt: skip
+    ends = [(frame.x(first.start), first, first.start_anchor)] if not first.start_beyond else []
+    ends += [(frame.x(last.end), last, last.end_anchor)] if not last.end_beyond else []
     hooks = "".join(
         segment(x, frame.z(bars.z), x, frame.z(bars.z) + _toward(bars, frame))
         for x, bars, anchor in ends

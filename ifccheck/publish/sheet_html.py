@@ -12,7 +12,7 @@ from itertools import islice, zip_longest
 
 from markupsafe import Markup
 
-from ifccheck.beam import SELF, Anchor, Bars, Beam, Given, Load, Stirrups
+from ifccheck.beam import SELF, Bars, Beam, Given, Load, Stirrups
 from ifccheck.publish.arising import (
     ShareRow,
     reaction_rows,
@@ -279,7 +279,10 @@ def bar_row(bars: Bars, steel: Given | None) -> SteelRow:
         height=f"{bars.z:.0f}",
         start=metres(bars.start),
         end=metres(bars.end),
-        ends=_ends(bars.start_anchor, bars.end_anchor),
+        ends=_ends(
+            "goes on" if bars.start_beyond > 0.0 else str(bars.start_anchor),
+            "goes on" if bars.end_beyond > 0.0 else str(bars.end_anchor),
+        ),
         strength=f"{steel.value:.0f}" if steel else "not known",
         assumed=bool(steel and steel.assumed),
         origin=bars.origin,
@@ -287,9 +290,9 @@ def bar_row(bars: Bars, steel: Given | None) -> SteelRow:
 
 
 @cache
-def _ends(start: Anchor, end: Anchor) -> str:
-    if start is end:
-        return str(start)
+def _ends(start: str, end: str) -> str:
+    if start == end:
+        return start
     return f"{start} – {end}"
 
 

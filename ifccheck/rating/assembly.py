@@ -125,7 +125,10 @@ class Frame:
 
 def frame_of(subjects: Sequence[Subject], cases: Sequence[Case]) -> Frame:
     """The beams as tables."""
-    follows = [subject.reinforcement_source != DRAWN for subject in subjects]
+    follows = [
+        subject.reinforcement_source != DRAWN or any(bar.along < 1.0 for bar in subject.bars)
+        for subject in subjects
+    ]
     runs, sections = run_table([subject.runs for subject in subjects], follows)
     spans = span_table([subject.span for subject in subjects])
     row_of_case = {case.name: row for row, case in enumerate(cases)}
@@ -208,6 +211,9 @@ def _layers(subjects: Sequence[Subject]) -> dict[str, Any]:
         table[beam, slot] = column(values)
         return table
 
+    beyond = np.stack(
+        [packed(bar.start_beyond for bar in bars), packed(bar.end_beyond for bar in bars)], axis=-1
+    )
     anchors = [
         packed(_ANCHOR[end] for end in ends).astype(np.intp)
         for ends in ([bar.start_anchor for bar in bars], [bar.end_anchor for bar in bars])
@@ -228,6 +234,7 @@ def _layers(subjects: Sequence[Subject]) -> dict[str, Any]:
         "layer_start_anchor": anchors[0],
         "layer_end_anchor": anchors[1],
         "layer_cover_distance": packed(cover_distances(subjects)),
+        "layer_beyond": beyond if beyond.any() else None,
     }
 
 

@@ -7,7 +7,7 @@ from collections.abc import Iterable, Iterator, Sequence
 
 import numpy as np
 
-from ifccheck.beam import Outline, Run
+from ifccheck.beam import Bars, Outline, Run
 from ifccheck.mechanics.arrays import Floats, Ints
 from ifccheck.mechanics.spacing import distance_to_surface, nearest_neighbour
 from ifccheck.rating.runs import outline_at
@@ -38,7 +38,26 @@ def cover_distances(subjects: Sequence[Subject]) -> Floats:
     )
     least = np.full(sizes.size, np.inf)
     np.minimum.at(least, layer, nearest)
+    _share_between_pieces(subjects, layers, least)
     return least
+
+
+def _share_between_pieces(
+    subjects: Sequence[Subject], layers: Sequence[Bars], least: Floats
+) -> None:
+    """Give layers of bars that go on elsewhere the least distance of all such bars of their size.
+
+    They are pieces of the same bars: they develop where they go on, and no better than there.
+    """
+    going_on = [k for k, bar in enumerate(layers) if bar.start_beyond > 0.0 or bar.end_beyond > 0.0]
+    if not going_on:
+        return
+    beam = np.repeat(np.arange(len(subjects)), [len(subject.bars) for subject in subjects])
+    groups: dict[tuple[int, float], list[int]] = defaultdict(list)
+    for k in going_on:
+        groups[int(beam[k]), layers[k].diameter].append(k)
+    for pieces in groups.values():
+        least[pieces] = least[pieces].min()
 
 
 def _to_surface(

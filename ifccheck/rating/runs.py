@@ -190,11 +190,11 @@ def outline_of(runs: Sequence[Run], x: float) -> Outline:
 def along_axis(subject: Subject, bars: Bars) -> float:
     """Part of their force that bars along an inclined face have along the axis.
 
-    The cosine of the greatest inclination of the nearer face on their way; 1 for bars that were
-    drawn, and so are parallel to the axis.
+    The cosine of the greatest inclination of the nearer face on their way; of bars that were drawn
+    what their own slope leaves.
     """
     if subject.reinforcement_source == DRAWN:
-        return 1.0
+        return bars.along
     steepest = 0.0
     for run in subject.beam.runs:
         if run.outline_end is not None and bars.start < run.end and bars.end > run.start:

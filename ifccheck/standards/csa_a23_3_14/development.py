@@ -15,6 +15,9 @@ LEAST_DEVELOPMENT_LENGTH = 300.0
 DEPTH_BELOW_TOP_BARS = 300.0
 """Concrete cast below a bar beyond which it is a top bar [mm] (12.2.4)"""
 
+TOP_BAR_FACTOR = 1.3
+"""k1 of top bars (12.2.4)"""
+
 SMALL_BAR = 19.6
 """Greatest diameter that counts as 20M or smaller [mm]; a 20M bar has 19.5 (12.2.4)"""
 
@@ -76,7 +79,7 @@ def development_length(
     CSA A23.3-14, 12.2.2 and 12.2.4
     """
     bar_area = np.pi / 4 * diameter**2 if bar_area is None else bar_area
-    k1 = np.where(top_bar, 1.3, 1.0)
+    k1 = np.where(top_bar, TOP_BAR_FACTOR, 1.0)
     k3 = np.where(density_factor >= 1.0, 1.0, np.where(density_factor >= 0.85, 1.2, 1.3))
     k4 = np.where(diameter <= SMALL_BAR, 0.8, 1.0)
     confinement = np.minimum(np.maximum(cover_distance, 0.0), 2.5 * diameter)
@@ -159,10 +162,12 @@ def developed_fraction(
     bar_end: Floats,
     start_length: Floats,
     end_length: Floats,
+    start_beyond: Floats | float = 0.0,
+    end_beyond: Floats | float = 0.0,
 ) -> Floats:
     """Part of its yield stress that a bar can reach at a place.
 
-    min((x - start) / l_start, (end - x) / l_end, 1), 0 beyond the bar
+    min((x - start + b_start) / l_start, (end - x + b_end) / l_end, 1), 0 beyond the bar
 
     Parameters
     ----------
@@ -173,6 +178,9 @@ def developed_fraction(
         Outermost points of the bar, hooks included; infinite ends are allowed.
     start_length, end_length : arrays [mm]
         Development length from either end; 0 for an end that is fully anchored.
+    start_beyond, end_beyond : arrays [mm], optional
+        b_start and b_end: the length that the same bar goes on beyond its start and end, at
+        another height or inclined, where it is bonded but not counted here.
 
     Returns
     -------
@@ -196,7 +204,9 @@ def developed_fraction(
     CSA A23.3-14, 12.1 and 12.2
     """
     before, after = x - bar_start, bar_end - x
-    risen = np.minimum(_rise(before, start_length), _rise(after, end_length))
+    risen = np.minimum(
+        _rise(before + start_beyond, start_length), _rise(after + end_beyond, end_length)
+    )
     absent = (before < 0.0) | ((before == 0.0) & (side < 0))
     absent |= (after < 0.0) | ((after == 0.0) & (side > 0))
     return np.where(absent, 0.0, np.minimum(np.maximum(risen, 0.0), 1.0))

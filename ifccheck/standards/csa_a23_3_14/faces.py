@@ -126,6 +126,9 @@ class Layers:
     start_push: Floats
     """Development length in compression, nowhere less than that in tension [mm]"""
     end_push: Floats
+    start_beyond: Floats
+    """Length of the bars beyond the start of the layer over which they develop too [mm]"""
+    end_beyond: Floats
 
     @property
     def slower_in_compression(self) -> bool:

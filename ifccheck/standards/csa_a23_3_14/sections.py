@@ -240,8 +240,21 @@ def _layers(members: Members) -> Layers:
     pushed = [np.where(length > 0.0, np.maximum(length, least), length) for length in pulled]
     return Layers(
         m.layer_height, m.layer_area, m.layer_diameter, m.layer_yield, m.layer_start, m.layer_end,
-        *pulled, *pushed,
+        *(*pulled, *pushed, *_beyond(m)),
     )  # fmt: skip
+
+
+def _beyond(members: Members) -> tuple[Floats, Floats]:
+    """Length beyond start and end of each layer over which its bars develop too [mm].
+
+    What goes on may be a top bar though the layer is none, and develops over 1.3 times the length
+    there (12.2.4).
+    """
+    if members.layer_beyond is None:
+        nothing = np.zeros(members.layer_area.shape)
+        return nothing, nothing
+    counting = members.layer_beyond / development.TOP_BAR_FACTOR
+    return counting[..., 0], counting[..., 1]
 
 
 def _faces(
@@ -332,9 +345,12 @@ def _developed(
     end_length: Floats,
 ) -> Floats:
     """Part of fy that each layer reaches at the stations."""
-    start, end, start_length, end_length = (
+    start, end, start_length, end_length, start_beyond, end_beyond = (
         np.asfortranarray(a[beam, :layers])
-        for a in (bars.start, bars.end, start_length, end_length)
+        for a in (
+            *(bars.start, bars.end, start_length, end_length),
+            *(bars.start_beyond, bars.end_beyond),
+        )
     )
     return development.developed_fraction(
         x=x[:, None],
@@ -343,6 +359,8 @@ def _developed(
         bar_end=end,
         start_length=start_length,
         end_length=end_length,
+        start_beyond=start_beyond,
+        end_beyond=end_beyond,
     )
 
 
