@@ -192,3 +192,197 @@ def test_beams_without_such_sets_have_no_such_source() -> None:
     beam = model.beam()
     model.properties(beam, "Pset_ReinforcementBarPitchOfBeam", {"Reference": "R1"})
     assert model.read(beam, {"top": "Office.Top"}).sources == ()
+
+
+# Properties of the project's own, of every kind ------------------------------------------------
+
+
+def held(model: ModelWithBars, owner: Any, name: str, *items: Any) -> Any:
+    """A set of properties that are given as entities."""
+    made = model.root("IfcPropertySet", Name=name, HasProperties=list(items))
+    if owner is not None:
+        model.root(
+            "IfcRelDefinesByProperties", RelatedObjects=[owner], RelatingPropertyDefinition=made
+        )
+    return made
+
+
+def labels(model: ModelWithBars, *texts: str) -> list[Any]:
+    return [model.file.create_entity("IfcLabel", text) for text in texts]
+
+
+def single(model: ModelWithBars, name: str, measure: str, value: Any, unit: Any = None) -> Any:
+    create = model.file.create_entity
+    return create("IfcPropertySingleValue", name, None, create(measure, value), unit)
+
+
+@pytest.mark.parametrize(
+    "place",
+    ["Office.Bars bottom", "Off*.Bars bottom", "*.*bottom", "Office.*", "*ice.Bars*", "O*e.*b*m"],
+)
+def test_names_may_hold_wildcards(place: str) -> None:
+    zone = zone_of({"Bars bottom": "3-25M"}, "Office", {"bottom": place})
+    assert zone.bottom == (BarGroup(3, "25M", 25.2, 500.0),)
+    assert zone.origin == "Office.Bars bottom"
+
+
+@pytest.mark.parametrize("place", ["office.Bars bottom", "Office.Bars", "*.bottom", "Of.*", "x*.*"])
+def test_a_pattern_that_does_not_fit_reads_nothing(place: str) -> None:
+    model = ModelWithBars()
+    beam = model.beam()
+    model.properties(beam, "Office", {"Bars bottom": "3-25M"})
+    assert model.read(beam, {"bottom": place}).sources == ()
+
+
+def test_a_pattern_that_finds_two_differing_values_is_a_reason_that_names_both() -> None:
+    model = ModelWithBars()
+    beam = model.beam()
+    model.properties(beam, "Office 1", {"Bottom": "3-25M"})
+    model.properties(beam, "Office 2", {"Bottom": "5-25M"})
+    reasons = model.read(beam, {"bottom": "Office*.Bottom"}).reasons
+    for part in ("Office 1.Bottom", "Office 2.Bottom", "'3-25M'", "'5-25M'"):
+        assert part in reasons
+    assert model.read(beam, {"bottom": "*1.Bottom"}).reasons == ""
+
+
+def test_a_pattern_that_finds_the_same_twice_reads_it() -> None:
+    model = ModelWithBars()
+    beam = model.beam()
+    model.properties(beam, "Office 1", {"Bottom": "3-25M"})
+    model.properties(beam, "Office 2", {"Bottom": "3x25M"})
+    (zone,) = model.read(beam, {"bottom": "Office*.Bottom"}).source("properties").zones
+    assert zone.bottom == (BarGroup(3, "25M", 25.2, 500.0),)
+
+
+def test_two_sets_of_one_name_that_differ_are_a_reason() -> None:
+    model = ModelWithBars()
+    beam = model.beam()
+    for text in ("3-25M", "5-25M"):
+        model.properties(beam, OWN, {"BottomBars": text})
+    assert "says otherwise: '3-25M'" in model.read(beam).reasons
+
+
+def test_a_property_of_the_beam_goes_before_that_of_its_type() -> None:
+    model = ModelWithBars()
+    beam = model.beam()
+    values = {"Bottom": "5-25M", "Top": "2-20M"}
+    of_type = held(model, None, "Office", *(single(model, key, "IfcLabel", text)
+                                            for key, text in values.items()))  # fmt: skip
+    kind = model.root("IfcBeamType", HasPropertySets=[of_type], PredefinedType="BEAM")
+    model.root("IfcRelDefinesByType", RelatedObjects=[beam], RelatingType=kind)
+    model.properties(beam, "Office", {"Bottom": "3-25M"})
+    found = model.read(beam, {"bottom": "Off*.Bottom", "top": "*.Top"})
+    assert found.reasons == ""
+    (zone,) = found.source("properties").zones
+    assert zone.bottom == (BarGroup(3, "25M", 25.2, 500.0),)
+    assert zone.top == (BarGroup(2, "20M", 19.5, 300.0),)
+
+
+@pytest.mark.parametrize(
+    ("measure", "value", "unit", "cover"),
+    [
+        ("IfcReal", 4.0, "CENTI", 40.0),
+        ("IfcPositiveLengthMeasure", 4.0, "CENTI", 40.0),
+        ("IfcLengthMeasure", 0.04, None, 40.0),
+        ("IfcInteger", 35, "MILLI", 35.0),
+    ],
+)
+def test_a_value_with_a_unit_of_its_own_goes_against_the_projects(
+    measure: str, value: Any, unit: str | None, cover: float
+) -> None:
+    model = ModelWithBars(unit="in")
+    beam = model.beam()
+    own = model.file.create_entity("IfcSIUnit", UnitType="LENGTHUNIT", Prefix=unit, Name="METRE")
+    bars = single(model, "Bottom", "IfcLabel", "3-25M")
+    held(model, beam, "Office", single(model, "Cover", measure, value, own), bars)
+    mapping = {"cover": "Office.Cover", "bottom": "Office.Bottom"}
+    (zone,) = model.read(beam, mapping).source("properties").zones
+    assert zone.cover == pytest.approx(cover)
+
+
+def test_a_unit_of_another_kind_is_a_reason() -> None:
+    model = ModelWithBars()
+    beam = model.beam()
+    newton = model.file.create_entity("IfcSIUnit", UnitType="FORCEUNIT", Name="NEWTON")
+    for measure in ("IfcReal", "IfcLengthMeasure"):
+        held(model, beam, "Office", single(model, "Cover", measure, 40.0, newton))
+    assert model.read(beam, {"cover": "Office.Cover"}).reasons.count("its unit is none of") == 2
+
+
+def listed(kind: str, *entries: Any, field: str = "bottom") -> Reinforcement:
+    """What is read of a property of several values."""
+    model = ModelWithBars()
+    beam = model.beam()
+    values = [
+        model.file.create_entity(*entry) if isinstance(entry, tuple) else labels(model, entry)[0]
+        for entry in entries
+    ]
+    held(model, beam, "Office", model.file.create_entity(kind, "Value", None, values))
+    (source,) = model.read(beam, {field: "Office.Value"}).sources
+    return source
+
+
+def test_the_bars_of_a_list_are_added_up_and_that_is_said() -> None:
+    source = listed("IfcPropertyListValue", "3-25M", "2-20M")
+    assert source.reasons == ()
+    assert source.zones[0].bottom == (
+        BarGroup(3, "25M", 25.2, 500.0), BarGroup(2, "20M", 19.5, 300.0),
+    )  # fmt: skip
+    (remark,) = source.remarks
+    assert "the bars of its list are added up" in remark.text
+    assert remark.kind == "assumption"
+
+
+@pytest.mark.parametrize(
+    ("kind", "entries", "field", "part"),
+    [
+        ("IfcPropertyListValue", ("3-25M", "3-25M"), "bottom", "25M more than once"),
+        ("IfcPropertyListValue", ("2-25M", "4-25M", "2-20M"), "top", "25M more than once"),
+        ("IfcPropertyListValue", ("10M @ 150", "10M @ 250"), "stirrups", "different values"),
+        ("IfcPropertyListValue", (("IfcLengthMeasure", 40.0), ("IfcLengthMeasure", 50.0)), "cover",
+         "different values"),
+        ("IfcPropertyListValue", ("400W", "300W"), "bar_yield", "different values"),
+        ("IfcPropertyEnumeratedValue", ("3-25M", "4-25M"), "bottom", "several choices"),
+        ("IfcPropertyListValue", (("IfcInteger", 3), ("IfcInteger", 25)), "bottom", "notation"),
+    ],
+)  # fmt: skip
+def test_several_values_that_do_not_agree_are_a_reason(
+    kind: str, entries: tuple[Any, ...], field: str, part: str
+) -> None:
+    source = listed(kind, *entries, field=field)
+    (reason,) = source.reasons
+    assert part in reason.text
+    assert reason.blocking
+
+
+def test_several_values_that_agree_are_one() -> None:
+    length = ("IfcLengthMeasure", 40.0)
+    assert listed("IfcPropertyListValue", length, length, field="cover").zones[0].cover == 40.0
+    zone = listed("IfcPropertyListValue", "10M @ 150", "10M @ 150 mm", field="stirrups").zones[0]
+    assert zone.stirrups == StirrupGroup("10M", 11.3, 100.0, 150.0, None)
+    one = listed("IfcPropertyEnumeratedValue", "3-25M").zones[0]
+    assert one.bottom == (BarGroup(3, "25M", 25.2, 500.0),)
+
+
+@pytest.mark.parametrize("bounds", [(30.0, 50.0), (None, 40.0), (40.0, None)])
+def test_a_range_is_a_reason(bounds: tuple[float | None, float | None]) -> None:
+    model = ModelWithBars()
+    beam = model.beam()
+    create = model.file.create_entity
+    low, high = (None if b is None else create("IfcLengthMeasure", b) for b in bounds)
+    held(model, beam, "Office", create("IfcPropertyBoundedValue", "Cover", None, high, low))
+    assert "it gives a range" in model.read(beam, {"cover": "Office.Cover"}).reasons
+
+
+def test_a_table_and_a_reference_are_reasons() -> None:
+    model = ModelWithBars()
+    beam = model.beam()
+    create = model.file.create_entity
+    keys, bars = labels(model, "start", "middle"), labels(model, "2-25M", "4-25M")
+    date = create("IfcTable", "Bars")
+    held(model, beam, "Office", create("IfcPropertyTableValue", "Bottom", None, keys, bars),
+         create("IfcPropertyReferenceValue", "Top", None, None, date))  # fmt: skip
+    found = model.read(beam, {"bottom": "Office.Bottom", "top": "Office.T*"})
+    assert "property Office.Bottom" in found.reasons
+    assert "it holds a table" in found.reasons
+    assert "it refers to something else" in found.reasons

@@ -96,9 +96,9 @@ def project_set(made: Model, element: Any) -> None:
                            create("IfcSIUnit", UnitType="LENGTHUNIT", Name="METRE"))  # fmt: skip
     kept = create("IfcPropertyEnumeration", "Sizes", [label("2-20M"), label("3-20M")])
     held = [
-        create("IfcPropertyListValue", "Rebar bottom", None, [label("2-25M"), label("1x25M")]),
+        create("IfcPropertyListValue", "Rebar bottom", None, [label("3x25M")]),
         create("IfcPropertyEnumeratedValue", "Rebar top", None, [label("2-20M")], kept),
-        create("IfcPropertySingleValue", "Rebar links", None, label("2 legs 10M @ 200"), None),
+        create("IfcPropertyListValue", "Rebar links", None, [label("2 legs 10M @ 200")] * 2),
         create("IfcPropertySingleValue", "Cover", None, create("IfcReal", 40.0 / 25.4), inch),
     ]
     values = made.rooted("IfcPropertySet", "own", Name="Office Beam 7", HasProperties=held)
@@ -119,6 +119,9 @@ WAYS: Mapping[str, Callable[[Path, Setting], dict[str, Any]]] = {
     "bars": lambda folder, setting: rated(folder, written(setting, bars()), text()),
     "sections": lambda folder, setting: rated(folder, written(setting, PLAIN, BOTTOM, TOP), text()),
     "type": lambda folder, setting: rated(folder, written(setting, change=by_type), text()),
+    "project's set": lambda folder, setting: rated(
+        folder, written(setting, change=project_set), text(MAPPING, cover=False)
+    ),
     "own set": lambda folder, setting: rated(
         folder, written(setting, replace(PLAIN, notation=NOTATION)), text(cover=False)
     ),

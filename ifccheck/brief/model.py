@@ -19,8 +19,9 @@ from ifccheck.beam import (
 )
 
 ReinforcementField = Literal[
-    "top", "bottom", "side", "stirrups", "cover", "bar_yield", "stirrup_yield"
-]
+    "top", "bottom", "side", "stirrups", "cover", "bar_yield", "stirrup_yield",
+    "stirrup_diameter", "stirrup_spacing", "stirrup_legs",
+]  # fmt: skip
 
 
 SlabFlange = Literal["none", "level", "on top"]
@@ -206,7 +207,7 @@ class Brief:
     schedule_optional: bool
     """True where rows of the schedule may reach no beam."""
     property_mapping: Mapping[ReinforcementField, str]
-    """Field to "Set.Property"."""
+    """Field to "Set.Property", either with ``*`` for any characters."""
     lines: Mapping[str, int]
     """Line of every table and key: "loads[3].at" to 46"""
     cases: tuple[Case, ...]

@@ -134,6 +134,9 @@ class PropertiesTable(Table):
     cover: Name | None = None
     bar_yield: Name | None = None
     stirrup_yield: Name | None = None
+    stirrup_diameter: Name | None = None
+    stirrup_spacing: Name | None = None
+    stirrup_legs: Name | None = None
 
 
 class ReinforcementTable(Table):

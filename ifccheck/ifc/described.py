@@ -3,11 +3,12 @@
 from __future__ import annotations
 
 import re
-from collections.abc import Callable, Iterable, Iterator, Mapping, Sequence
+from collections.abc import Callable, Iterable, Mapping, Sequence
 from dataclasses import dataclass, replace
-from typing import Any, Literal, TypeGuard
+from typing import Any, Literal
 
-from ifccheck.beam import BarGroup, DescribedZone, Reason, Reinforcement, StirrupGroup
+from ifccheck.beam import BarGroup, DescribedZone, Reason, Reinforcement, Remark, StirrupGroup
+from ifccheck.ifc.bar_findings import STAGE
 from ifccheck.ifc.bar_sizes import (
     GREATEST_YIELD,
     LEAST_YIELD,
@@ -17,7 +18,8 @@ from ifccheck.ifc.bar_sizes import (
     yield_of_grade,
 )
 from ifccheck.ifc.context import Context
-from ifccheck.ifc.properties import PropertyValue, Sets
+from ifccheck.ifc.mapped import Places, Stated
+from ifccheck.ifc.properties import Form, PropertyValue
 from ifccheck.ifc.units import ModelUnits, UnitKind
 from ifccheck.notation import NotationError, bar, parse_bars, parse_stirrups
 from ifccheck.units import QuantityError, clipped, parse_quantity
@@ -43,6 +45,13 @@ LIMITS: Mapping[str, tuple[float, float]] = {
     "stirrup_legs": (1.0, 24.0),
 }
 """Least and greatest credible value [mm], [MPa]."""
+ADDED_UP = frozenset({"top", "bottom", "side"})
+"""Fields of which a list gives bars that lie there together."""
+REFUSED: Mapping[Form, str] = {
+    "range": "it gives a range, not a value",
+    "table": "it holds a table",
+    "reference": "it refers to something else",
+}
 
 
 @dataclass(frozen=True, slots=True)
@@ -51,6 +60,8 @@ class Found:
 
     value: Any
     source: str
+    text: str
+    """What stands there"""
 
 
 class CannotReadError(Exception):
@@ -62,64 +73,52 @@ def read_described(
 ) -> dict[int, Reinforcement]:
     """Read what property sets tell of the reinforcement of beams, by STEP id.
 
-    ``mapping`` gives the property of a field as "Set.Property".
+    ``mapping`` gives the property of a field as "Set.Property", with ``*`` for any characters.
     """
-    places, wanted = _places(mapping), sets_described(mapping)
+    places = _places(mapping)
     found: dict[int, Reinforcement] = {}
     for beam in beams:
-        sets = context.properties.of(beam)
-        if wanted.isdisjoint(sets):
-            continue
-        given = [(name, place, _property(sets, place)) for name, place in places]
-        stated = [(name, place, value) for name, place, value in given if _is_stated(value)]
+        stated = places.stated(context, beam)
         if stated:
-            found[beam] = _described(stated, context.units)
+            found[beam] = _described(stated, context.units, str(context.file.by_id(beam)[0]))
     return found
 
 
-def _places(mapping: Mapping[str, str]) -> list[tuple[str, str]]:
-    """Fields, each with the property that may hold it."""
+def _places(mapping: Mapping[str, str]) -> Places:
+    """Fields, each with the properties that may hold it."""
     own = [(name, f"{OWN_SET}.{key}") for name, key in OWN_PROPERTIES.items()]
-    return [*own, *mapping.items()]
+    return Places([*own, *mapping.items()])
 
 
 def sets_described(mapping: Mapping[str, str]) -> set[str]:
-    """Return the names of the sets that may tell of the reinforcement."""
-    return {name for _, place in _places(mapping) for name in _names_of_sets(place)}
+    """Return the names of the sets that may tell of the reinforcement, where they have no ``*``."""
+    return _places(mapping).set_names()
 
 
-def _names_of_sets(place: str) -> Iterator[str]:
-    """What "Set.Property" may mean as the name of a set; it may hold dots itself."""
-    parts = place.split(".")
-    return (".".join(parts[:cut]) for cut in range(1, len(parts)))
-
-
-def _property(sets: Sets, place: str) -> PropertyValue | None:
-    """The property at "Set.Property"; either name may hold dots itself."""
-    for name in _names_of_sets(place):
-        values = sets.get(name)
-        if values is not None and (value := values.get(place[len(name) + 1 :])) is not None:
-            return value
-    return None
-
-
-def _is_stated(value: PropertyValue | None) -> TypeGuard[PropertyValue]:
-    """Whether a property says anything: exporters write many that are blank."""
-    return value is not None and value.value is not None and str(value.value).strip() != ""
-
-
-def _described(
-    stated: Sequence[tuple[str, str, PropertyValue]], units: ModelUnits
-) -> Reinforcement:
+def _described(stated: Sequence[Stated], units: ModelUnits, key: str) -> Reinforcement:
     found: dict[str, Found] = {}
     reasons: list[Reason] = []
+    remarks: list[Remark] = []
     for name, place, value in stated:
         try:
-            _add(found, name, Found(READERS[name](value, units), place))
+            _add(found, name, Found(_read(name, value, units), place, clipped(value.value)))
         except CannotReadError as error:
             text = f"property {place} {clipped(value.value)} cannot be read: {error}"
             reasons.append(Reason(text))
-    zone = DescribedZone(
+        else:
+            if _is_sum(name, value):
+                text = f"property {place} {clipped(value.value)}: the bars of its list are added up"
+                remarks.append(Remark(key, STAGE, text, "assumption"))
+    return Reinforcement(
+        source="properties",
+        zones=(_zone(found, reasons),),
+        reasons=tuple(reasons),
+        remarks=tuple(remarks),
+    )
+
+
+def _zone(found: Mapping[str, Found], reasons: list[Reason]) -> DescribedZone:
+    return DescribedZone(
         top=_get(found, "top"),
         bottom=_get(found, "bottom"),
         side=_get(found, "side"),
@@ -130,13 +129,42 @@ def _described(
         stirrup_yield=_get(found, "stirrup_yield"),
         origin=", ".join(dict.fromkeys(one.source for one in found.values())),
     )
-    return Reinforcement(source="properties", zones=(zone,), reasons=tuple(reasons))
+
+
+def _read(name: str, value: PropertyValue, units: ModelUnits) -> Any:
+    """Read a property; of several values each, which must agree unless they add up."""
+    if value.form in REFUSED:
+        raise CannotReadError(REFUSED[value.form])
+    if not isinstance(value.value, tuple):
+        return READERS[name](value, units)
+    each = [READERS[name](replace(value, value=one, form="single"), units) for one in value.value]
+    if _is_sum(name, value):
+        return _together([group for groups in each for group in groups])
+    if any(one != each[0] for one in each):
+        what = "several choices" if value.form == "choice" else "different values"
+        raise CannotReadError(f"it holds {what}")
+    return each[0]
+
+
+def _is_sum(name: str, value: PropertyValue) -> bool:
+    return name in ADDED_UP and value.form == "list"
+
+
+def _together(groups: Sequence[BarGroup]) -> tuple[BarGroup, ...]:
+    """Bars of a list, unless it gives a size twice: then it may go along the beam."""
+    sizes = [group.designation for group in groups]
+    twice = next((size for size in sizes if sizes.count(size) > 1), None)
+    if twice is not None:
+        raise CannotReadError(
+            f"its list gives {twice} more than once, which may be layers or places along the beam"
+        )
+    return tuple(groups)
 
 
 def _add(found: dict[str, Found], name: str, new: Found) -> None:
     known = found.setdefault(name, new)
     if known.value != new.value:
-        raise CannotReadError(f"{known.source} says otherwise")
+        raise CannotReadError(f"{known.source} says otherwise: {known.text}")
 
 
 def _get(found: Mapping[str, Found], name: str) -> Any:
@@ -179,11 +207,9 @@ def _stirrup_notation(value: PropertyValue, units: ModelUnits) -> StirrupGroup |
 
 
 def _text(value: PropertyValue) -> str:
-    """The text of a property; the texts of a list are parts of one notation."""
-    parts = value.value if isinstance(value.value, tuple) else (value.value,)
-    if not all(isinstance(part, str) for part in parts):
+    if not isinstance(value.value, str):
         raise CannotReadError("bar notation is a text like 3-25M")
-    return " + ".join(parts)
+    return value.value
 
 
 def _quantity(value: PropertyValue, kind: Literal["length", "stress"], units: ModelUnits) -> float:

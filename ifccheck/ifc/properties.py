@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Collection, Iterable, Iterator, Mapping, Sequence
 from dataclasses import dataclass
 from itertools import chain, islice
-from typing import Any
+from typing import Any, Literal
 
 from ifccheck.ifc.entity import Entity, UnreadableError, get, several, text, text_at
 from ifccheck.ifc.relations import Relations
@@ -35,18 +35,27 @@ IN_ATTRIBUTES = (
 """IFC2X3 keeps the common material values in attributes of these."""
 
 
+Form = Literal["single", "list", "choice", "range", "table", "reference"]
+FORMS: Mapping[str, Form] = {
+    "IfcPropertyTableValue": "table", "IfcPropertyReferenceValue": "reference",
+}  # fmt: skip
+"""Properties that hold no value to be read, by class"""
+
+
 @dataclass(frozen=True, slots=True)
 class PropertyValue:
     """One value of a set, as the model gives it."""
 
     value: Any
-    """str, float, int, bool or None; a tuple where the property holds several values."""
+    """str, float, int, bool or None; a tuple where the property holds several, or bounds."""
     measure: str
     """Name of its measure type, such as "IfcLengthMeasure"; "" where there is no value."""
     factor: float | None
     """Times ``value`` gives N, mm, MPa, rad, kg/m3; None where it has no unit, or one that
     contradicts its measure."""
     kind: UnitKind | None = None
+    form: Form = "single"
+    """What several values are: a list, choices of an enumeration, bounds."""
 
     @property
     def number(self) -> float | None:
@@ -93,6 +102,11 @@ class Properties:
         if step_id not in self._by_object:
             self._by_object[step_id] = self._sets(self._relations.property_sets(step_id))
         return self._by_object[step_id]
+
+    def held(self, step_id: int) -> Iterator[tuple[str, int]]:
+        """Yield name and STEP id of each set that an object, or a type, holds itself."""
+        for set_id in dict.fromkeys(self._relations.sets.get(step_id, ())):
+            yield self._name(set_id), set_id
 
     def find(self, step_ids: Iterable[int], names: Collection[str]) -> None:
         """Find the sets of many objects in the file's text, and what those of some names hold."""
@@ -179,13 +193,16 @@ class Properties:
             for inner in several(item, "HasProperties"):
                 yield from self._property(inner, name + ".")
         elif kind == "IfcPropertyListValue":
-            yield name, self._list(item, several(item, "ListValues"), get(item, "Unit"))
+            listed = several(item, "ListValues")
+            yield name, self._several(item, listed, get(item, "Unit"), "list")
         elif kind == "IfcPropertyEnumeratedValue":
-            yield name, self._list(item, several(item, "EnumerationValues"), None)
+            yield name, self._several(item, several(item, "EnumerationValues"), None, "choice")
         elif kind == "IfcPropertyBoundedValue":
             bounds = [get(item, "LowerBoundValue"), get(item, "UpperBoundValue")]
             given = tuple(bound for bound in bounds if bound is not None)
-            yield name, self._list(item, given, get(item, "Unit"))
+            yield name, self._several(item, given, get(item, "Unit"), "range")
+        elif kind in FORMS:
+            yield name, PropertyValue(None, "", None, form=FORMS[kind])
 
     def _value(self, item: Entity, wrapped: Entity | None, unit: Entity | None) -> PropertyValue:
         if wrapped is None:
@@ -194,14 +211,15 @@ class Properties:
         kind, factor = self._scale(measure, unit)
         return PropertyValue(wrapped.get_argument(0), measure, factor, kind)
 
-    def _list(
-        self, item: Entity, wrapped: tuple[Entity, ...], unit: Entity | None
+    def _several(
+        self, item: Entity, wrapped: tuple[Entity, ...], unit: Entity | None, form: Form
     ) -> PropertyValue:
-        if len(wrapped) < 2:
+        """Several values; one that stands alone is a single value, unless it is a bound."""
+        if not wrapped or (len(wrapped) == 1 and form != "range"):
             return self._value(item, wrapped[0] if wrapped else None, unit)
         first = self._value(item, wrapped[0], unit)
         values = tuple(entity.get_argument(0) for entity in wrapped)
-        return PropertyValue(values, first.measure, first.factor, first.kind)
+        return PropertyValue(values, first.measure, first.factor, first.kind, form)
 
     def _quantity(self, quantity: Entity) -> PropertyValue:
         measure = quantity.is_a()
