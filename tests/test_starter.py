@@ -64,6 +64,7 @@ def test_it_loads_and_rates_nothing_of_the_sample_adequate(tmp_path: Path) -> No
     path = starter(tmp_path, SAMPLE)
     brief = load_brief(path)
     assert (brief.basis.standard, brief.loads, brief.cases) == (STANDARD, (), ())
+    assert {"#[scope]", "#slab_flanges = true"} <= set(path.read_text("utf-8").splitlines())
     assert verdicts([SAMPLE], path) == {Verdict.NOT_RATED}
 
 

@@ -49,6 +49,7 @@ def starter_brief(models: Sequence[StarterModel], standards: Sequence[str]) -> s
     parts = (
         _head(models),
         _basis(standards),
+        _scope(),
         _defaults(models, names),
         _reinforcement(models, names),
         _cases(),
@@ -83,6 +84,15 @@ def _basis(standards: Sequence[str]) -> Iterator[str]:
     yield 'concrete_unit_weight = "24 kN/m3"'
 
 
+def _scope() -> Iterator[str]:
+    yield from _prose(
+        "Beams that are modelled as something else (a member, a proxy, an assembly) are taken in by"
+        " queries, as in also = ['IfcMember, Name=/HB-.*/']; leave_out = [...] names what is not to"
+        " be looked at."
+    )
+    yield "#[scope]"
+
+
 # Defaults --------------------------------------------------------------------------------------
 
 
@@ -107,6 +117,10 @@ def _defaults(models: Sequence[StarterModel], names: _Names) -> Iterator[str]:
         " end needs an entry of [[supports]]."
     )
     yield '#supports = ["?", "?"]'
+    yield from _prose(
+        "Slabs that beams are cast with count as their flanges only where you say so."
+    )
+    yield "#slab_flanges = true"
 
 
 def _silence(models: Sequence[StarterModel], reason: str, names: _Names) -> str:
