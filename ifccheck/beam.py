@@ -257,6 +257,11 @@ class Reinforcement:
     reasons: tuple[Reason, ...] = ()
     remarks: tuple[Remark, ...] = ()
 
+    @property
+    def speaks_of_stirrups(self) -> bool:
+        """Whether it gives stirrups somewhere, or states that there are none."""
+        return bool(self.stirrups) or any(z.stirrups or z.no_stirrups for z in self.zones)
+
 
 @dataclass(frozen=True, slots=True)
 class Beam:

@@ -371,6 +371,17 @@ def test_a_definition_that_is_related_twice_or_repeated_counts_once() -> None:
     assert "counted once" in told(found)
 
 
+def test_a_definition_of_the_assembly_is_told_and_not_read() -> None:
+    model = ModelWithBars()
+    beam = model.beam()
+    whole = model.root("IfcElementAssembly", Name="A-1")
+    model.aggregate(whole, [beam])
+    writer(model).give([whole], BOTTOM, TOP)
+    found = model.read(beam).source("sections")
+    assert found.zones == ()
+    assert "IfcElementAssembly, which it is a part of" in why(found)
+
+
 def test_bars_that_are_modelled_stay_a_source_of_their_own() -> None:
     model = ModelWithBars()
     beam = model.beam()

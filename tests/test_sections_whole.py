@@ -242,6 +242,15 @@ def test_another_source_beside_sections_is_compared_in_numbers(tmp_path: Path) -
     assert said in telling(answer)
 
 
+def test_shear_names_the_source_that_knows_of_stirrups(tmp_path: Path) -> None:
+    model = written(Setting(), replace(PLAIN, notation=NOTATION), BOTTOM, TOP)
+    answer = rated(tmp_path / "by order", model, text())
+    assert answer["verdict"] == "not rated"
+    assert "which do not say whether there are stirrups, as properties does" in telling(answer)
+    order = 'sources = ["properties", "sections"]'
+    assert rated(tmp_path / "turned", model, text(sources=order))["verdict"] == "adequate"
+
+
 ODD = st.sampled_from([0.0, -1.0, 1e-6, 1e9, 0.3, 25.2, 600.0, None])
 CHANGES: Mapping[str, Any] = {
     "start": ODD, "end": ODD, "depth": ODD, "diameter": ODD, "area": ODD, "transverse": ODD,
@@ -268,3 +277,39 @@ def test_contradictory_sections_never_rate_a_beam_better(
     answer = rated(folder, written(Setting(), PLAIN, piece, TOP, name=name), text())
     assert answer["verdict"] != "adequate"
     assert answer["reasons"]
+
+
+NOTATIONS = ["3-25M", "5-25M", "none", "", "3 - 25M", "25M", "many", "99-55M"]
+LINKS = ["2 legs 10M @ 200", "10M @ 200", "none", "", "10M @ 5 km", "2 legs 10M @ 1500"]
+
+
+@given(
+    st.lists(st.sampled_from(NOTATIONS), min_size=1, max_size=3),
+    st.lists(st.sampled_from(LINKS), min_size=1, max_size=2),
+)
+@settings(max_examples=30, deadline=None)
+def test_properties_that_contradict_one_another_never_rate_a_beam(
+    tmp_path_factory: pytest.TempPathFactory, bottoms: list[str], links: list[str]
+) -> None:
+    def sets(made: Model, element: Any) -> None:
+        for number, pair in enumerate(itertools.zip_longest(bottoms, links)):
+            singles = [
+                made._single(name, "IfcLabel", value)
+                for name, value in zip(("Bottom", "Links"), pair, strict=True)
+                if value is not None
+            ]
+            held = made.rooted("IfcPropertySet", f"{number}", Name=f"Set {number}",
+                               HasProperties=singles)  # fmt: skip
+            made.rooted("IfcRelDefinesByProperties", f"{number}", RelatedObjects=[element],
+                        RelatingPropertyDefinition=held)  # fmt: skip
+
+    entries = '[reinforcement.properties]\nbottom = "Set*.Bottom"\nstirrups = "*.Links"\n'
+    simple = text(entries).replace('"fixed"', '"pinned"')
+    answer = rated(tmp_path_factory.mktemp("sets"), written(Setting(), change=sets), simple)
+    said = {one.replace(" ", "") for one in bottoms if one}
+    tied = {one for one in links if one}
+    if answer["verdict"] == "adequate":
+        assert said in ({"3-25M"}, {"5-25M"})
+        assert tied in ({"2 legs 10M @ 200"}, {"none"})
+    elif said == {"3-25M"} and tied == {"2 legs 10M @ 200"}:
+        pytest.fail(f"not adequate: {telling(answer)}")

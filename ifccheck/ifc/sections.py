@@ -8,7 +8,7 @@ from dataclasses import dataclass, field
 from ifccheck.beam import BarRow, DescribedZone, Reason, Reinforcement, Remark, RemarkKind
 from ifccheck.ifc.bar_findings import STAGE
 from ifccheck.ifc.context import BeamFrame, Context
-from ifccheck.ifc.entity import UnreadableError
+from ifccheck.ifc.entity import UnreadableError, label
 from ifccheck.ifc.section_places import Extent, Lying, extents, levels, lie, offset_of
 from ifccheck.ifc.section_rows import Row, RowReader, Stated
 from ifccheck.notation import show_bars
@@ -28,7 +28,9 @@ def read_sections(context: Context, hosts: Mapping[int, BeamFrame]) -> dict[int,
     found: dict[int, Reinforcement] = {}
     for beam, frame in hosts.items():
         own, of_type = _definitions(context, beam, defined)
-        if own or of_type:
+        if not own and not of_type:
+            found.update(_of_whole(context, beam, defined))
+        else:
             found[beam] = _read(context, beam, frame, reader.of(own or of_type), own and of_type)
     return found
 
@@ -40,6 +42,16 @@ def _definitions(context: Context, beam: int, defined: set[int]) -> tuple[list[i
     own = [one for one in sets.get(beam, ()) if one in defined]
     of_type = [] if type_id is None else [one for one in sets.get(type_id, ()) if one in defined]
     return own, [one for one in of_type if one not in own]
+
+
+def _of_whole(context: Context, beam: int, defined: set[int]) -> dict[int, Reinforcement]:
+    """Definitions of what a beam is a part of count along an axis that is not the beam's."""
+    for whole in context.relations.ancestors(beam):
+        if not defined.isdisjoint(context.relations.property_sets(whole)):
+            name = label(context.file.by_id(whole))
+            text = f"sections of reinforcement are given for {name}, which it is a part of"
+            return {beam: Reinforcement(source="sections", reasons=(Reason(text),))}
+    return {}
 
 
 @dataclass(slots=True)

@@ -114,10 +114,25 @@ def unstated_stirrups(subject: Subject) -> list[str]:
     unstated = sorted({z.designation or "no size" for z in subject.stirrups if not z.legs})
     found = []
     if not subject.stirrups_known:
-        found.append("no source says whether there are stirrups")
+        found.append(_no_word_of_stirrups(subject))
     if unstated:
         found.append(f"the legs of the stirrups are not stated ({', '.join(unstated)})")
     return found
+
+
+def _no_word_of_stirrups(subject: Subject) -> str:
+    used = subject.reinforcement_source
+    others = [
+        each.source
+        for each in subject.beam.reinforcement
+        if each.source != used and each.speaks_of_stirrups
+    ]
+    if not others:
+        return "no source says whether there are stirrups"
+    return (
+        f"{used} are used, which do not say whether there are stirrups, as {' and '.join(others)}"
+        " does: reinforcement.sources of the brief gives the order"
+    )
 
 
 def _missing(subject: Subject) -> str:
