@@ -2,18 +2,15 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Iterator, Mapping, Sequence
+from collections.abc import Iterable, Mapping, Sequence
 from dataclasses import dataclass
 from itertools import repeat
 from typing import Any
 
 import numpy as np
 
-from ifccheck.beam import Given
 from ifccheck.ifc.bar_paths import Ints
 from ifccheck.ifc.bar_sizes import (
-    GREATEST_YIELD,
-    LEAST_YIELD,
     BarSize,
     Grade,
     SizeSource,
@@ -23,18 +20,23 @@ from ifccheck.ifc.bar_sizes import (
     settle_size,
     yield_of_grade,
 )
+from ifccheck.ifc.bar_yields import (
+    GRADE_PROPERTIES,
+    NO_YIELDS,
+    YIELD_PROPERTIES,
+    Yields,
+    least,
+    yields_of,
+)
 from ifccheck.ifc.context import Context
 from ifccheck.ifc.entity import Entity, get, text
-from ifccheck.ifc.materials import Material, Materials
+from ifccheck.ifc.materials import Materials
 from ifccheck.ifc.properties import PropertyValue
 from ifccheck.ifc.units import ModelUnits
 
-GRADE_PROPERTIES = frozenset({"grade", "steelgrade", "steel grade"})
 SIZE_PROPERTIES = frozenset({"size", "barsize", "bar size", "diameter", "nominaldiameter"})
-"""Names of properties, in lower case, that tell the grade and the size of a bar."""
-YIELD_PROPERTY = "YieldStress"
-Texts = tuple[tuple[str, str], ...]
-"""Texts, each with the place that it was found in."""
+"""Names of properties, in lower case, that tell the size of a bar."""
+TELLING = SIZE_PROPERTIES | GRADE_PROPERTIES | YIELD_PROPERTIES
 
 
 @dataclass(frozen=True, slots=True)
@@ -42,7 +44,7 @@ class _Hints:
     """What property sets of a bar tell."""
 
     sizes: tuple[SizeSource, ...] = ()
-    grades: Texts = ()
+    yields: Yields = NO_YIELDS
 
 
 @dataclass(frozen=True, slots=True)
@@ -83,7 +85,7 @@ class BarData:
         self._settled: dict[tuple[object, ...], Data] = {}
         self._types: dict[int | None, _Type] = {None: NO_TYPE}
         self._materials = Materials(context)
-        self._material_data: dict[int | None, tuple[Texts, Given | None]] = {}
+        self._material_data: dict[int | None, Yields] = {}
         self._names: dict[str, str] = {}
 
     def of(self, product: Entity, step_id: int, name: str, swept: float | None) -> Data:
@@ -184,13 +186,13 @@ class BarData:
     def _grade(
         self,
         grade: str | None,
-        material: tuple[Texts, Given | None],
+        material: Yields,
         hints: _Hints,
         *names: str | None,
     ) -> int:
-        texts, stated = material
         named = [("name", name) for name in names if name and yield_of_grade(name) is not None]
-        sources = [("grade", grade or ""), *hints.grades, *named, *texts]
+        sources = [("grade", grade or ""), *hints.yields.texts, *named, *material.texts]
+        stated = least((hints.yields.stated, material.stated))
         return _index(self.grades, settle_grade(sources, stated))
 
     def _hints_of(self, step_id: int, sets: tuple[int, ...]) -> _Hints:
@@ -204,36 +206,35 @@ class BarData:
         if entity.is_a() != "IfcPropertySet":
             return False
         names = {str(item[0]).lower() for item in entity[4] or ()}
-        return not names.isdisjoint(GRADE_PROPERTIES) or not names.isdisjoint(SIZE_PROPERTIES)
+        return not names.isdisjoint(TELLING)
 
     def _read_hints(self, step_id: int) -> _Hints:
-        sizes: list[SizeSource] = []
-        grades: list[tuple[str, str]] = []
-        for set_name, values in self._context.properties.of(step_id).items():
-            for name, value in values.items():
-                source = f"{set_name}.{name}"
-                if name.lower() in SIZE_PROPERTIES:
-                    sizes.extend(_size_hint(source, value))
-                elif name.lower() in GRADE_PROPERTIES and isinstance(value.value, str):
-                    grades.append((source, value.value))
-        return _Hints(tuple(sizes), tuple(grades))
+        sets = self._context.properties.of(step_id)
+        sizes = [
+            size
+            for set_name, values in sets.items()
+            for name, value in values.items()
+            if name.lower() in SIZE_PROPERTIES
+            for size in _size_hint(f"{set_name}.{name}", value)
+        ]
+        return _Hints(tuple(sizes), yields_of(sets))
 
-    def _material(self, step_id: int | None, owner: int) -> tuple[Texts, Given | None]:
+    def _material(self, step_id: int | None, owner: int) -> Yields:
         """Names of the materials of a bar, and the yield strength that they state."""
         if step_id not in self._material_data:
             materials = self._materials.of(owner).materials
-            texts = tuple(("material", material.name) for material in materials)
-            stated = [given for one in materials for given in self._stated_yields(one)]
-            least = min(stated, key=lambda given: given.value, default=None)
-            self._material_data[step_id] = (texts, least)
+            each = [
+                yields_of(
+                    self._context.properties.of_material(one.step_id), f"material {one.name!r} "
+                )
+                for one in materials
+            ]
+            names = tuple(("material", one.name) for one in materials)
+            texts = tuple(text for said in each for text in said.texts)
+            self._material_data[step_id] = Yields(
+                (*names, *texts), least(said.stated for said in each)
+            )
         return self._material_data[step_id]
-
-    def _stated_yields(self, material: Material) -> Iterator[Given]:
-        for set_name, values in self._context.properties.of_material(material.step_id).items():
-            value = values.get(YIELD_PROPERTY)
-            number = None if value is None else value.number
-            if number is not None and LEAST_YIELD <= number <= GREATEST_YIELD:
-                yield Given(number, f"material {material.name!r} {set_name}.{YIELD_PROPERTY}")
 
 
 def area_of_bar(area: float | None, units: ModelUnits) -> float | None:

@@ -117,7 +117,7 @@ def _all_bars(model: Measured, levels: Levels, groups: _Groups) -> Iterator[Bars
             end=end,
             z=z,
             ys=tuple(ys[a:b]),
-            yield_strength=table.grades[grade].strength,
+            yield_strength=table.grades[grade].given,
             start_anchor=Anchor.HOOK if start_hook else Anchor.STRAIGHT,
             end_anchor=Anchor.HOOK if end_hook else Anchor.STRAIGHT,
             designation=size.designation,

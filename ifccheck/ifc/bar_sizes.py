@@ -211,12 +211,24 @@ def yield_of_grade(text: str) -> float | None:
     return min(readings) if readings else None
 
 
+def _is_grade(source: str, text: str) -> bool:
+    """Whether a text that is not understood must name a grade, as A240 does and STEEL does not."""
+    return source not in ("material", "name") and re.search(r"\d{2}", text) is not None
+
+
 @dataclass(frozen=True, slots=True)
 class Grade:
     """The steel of a bar."""
 
     strength: Given | None
     doubt: str = ""
+    unread: str = ""
+    """A grade that is stated and cannot be read: no default may fill it"""
+
+    @property
+    def given(self) -> Given | None:
+        """The strength; nan where one is stated that cannot be read."""
+        return Given(math.nan, self.unread) if self.unread else self.strength
 
 
 def settle_grade(texts: Iterable[tuple[str, str]], stated: Given | None = None) -> Grade:
@@ -231,8 +243,10 @@ def settle_grade(texts: Iterable[tuple[str, str]], stated: Given | None = None) 
     if stated is not None:
         read.append(stated)
     if not read:
-        unread = ", ".join(f"{source} {text!r}" for source, text, _ in given)
-        return Grade(None, f"no yield strength can be read from {unread}" if unread else "")
+        told = ", ".join(f"{source} {text!r}" for source, text, _ in given)
+        grades = [f"{source} {text!r}" for source, text, _ in given if _is_grade(source, text)]
+        doubt = f"no yield strength can be read from {told}" if told else ""
+        return Grade(None, doubt, ", ".join(grades))
     least = min(read, key=lambda one: one.value)
     if max(one.value for one in read) <= least.value * 1.001:
         return Grade(read[0])

@@ -81,10 +81,12 @@ class Concretes:
 
     def _densities(self, definition: MaterialDefinition, doubts: list[str]) -> Iterator[Given]:
         """The densities that the materials state."""
-        for material in definition.materials:
-            for name, values in self._context.properties.of_material(material.step_id).items():
+        named = [(material.step_id, material.name) for material in definition.materials]
+        named += [(step_id, definition.title) for step_id in definition.set_ids]
+        for step_id, material in named:
+            for name, values in self._context.properties.of_material(step_id).items():
                 if (value := values.get("MassDensity")) is not None:
-                    source = f'{name}.MassDensity of "{material.name}"'
+                    source = f'{name}.MassDensity of "{material}"'
                     yield from _stated_density(value, source, doubts)
 
 

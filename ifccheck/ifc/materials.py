@@ -31,6 +31,8 @@ class MaterialDefinition:
     set_names: tuple[str, ...] = ()
     """Names of layer, profile and constituent sets and of their parts."""
     profile_names: tuple[str, ...] = ()
+    set_ids: tuple[int, ...] = ()
+    """Of the sets and their parts, which may have property sets beside those of the materials."""
 
     @cached_property
     def title(self) -> str:
@@ -84,6 +86,7 @@ def _read(definition: Entity) -> MaterialDefinition:
                 if profile is not None and text(profile, "ProfileName")
             )
         ),
+        tuple(dict.fromkeys(part.id() for part in others)),
     )
 
 

@@ -50,9 +50,9 @@ class Measured:
         return table.sizes[int(table.size[self.bar[row]])]
 
     def strength(self, row: int) -> Given | None:
-        """Yield strength of the bar of a row."""
+        """Yield strength of the bar of a row; nan where one is stated that cannot be read."""
         table = self.places.table
-        return table.grades[int(table.grade[self.bar[row]])].strength
+        return table.grades[int(table.grade[self.bar[row]])].given
 
     def yields(self) -> Floats:
         """Yield strength by which bars of each grade are compared [MPa]."""

@@ -243,6 +243,7 @@ class Properties:
     def _attributes(self, entity: Entity) -> Iterator[tuple[str, PropertyValue]]:
         for name, kind in (
             ("CompressiveStrength", "pressure"),
+            ("YieldStress", "pressure"),
             ("YoungModulus", "pressure"),
             ("MassDensity", "density"),
         ):

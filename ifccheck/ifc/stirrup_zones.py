@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass, replace
 
@@ -205,7 +206,7 @@ def _all_stirrups(model: Measured, places: Places, zones: Zones) -> Iterator[Sti
 def _yield_strength(model: Measured, grades: tuple[int, int], rows: Sequence[int]) -> Given | None:
     """The lowest yield strength of a zone's stirrups, from the least and greatest grade."""
     if grades[0] == grades[1] >= 0:
-        return model.places.table.grades[grades[0]].strength
+        return model.places.table.grades[grades[0]].given
     strengths = [model.strength(row) for row in rows]
     known = [strength for strength in strengths if strength is not None]
     if known and len(known) < len(strengths):
@@ -215,4 +216,5 @@ def _yield_strength(model: Measured, grades: tuple[int, int], rows: Sequence[int
             blocking=False,
         )
         return None
-    return min(known, key=lambda strength: strength.value, default=None)
+    unread = [strength for strength in known if math.isnan(strength.value)]
+    return min(unread or known, key=lambda strength: strength.value, default=None)

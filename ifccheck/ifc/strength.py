@@ -107,6 +107,8 @@ class Strengths:
             readings += self._of_material(material)
         for name in definition.set_names:
             readings += _from_text(name, f'material set name "{name}"')
+        for step_id in definition.set_ids:
+            readings += self._from_properties(step_id, f'of "{definition.title}"')
         return readings
 
     def _of_material(self, material: Material) -> tuple[Said, ...]:
@@ -117,17 +119,15 @@ class Strengths:
     def _read(self, material: Material) -> Iterator[Said]:
         if is_only_steel(material.name):
             return
-        sets = self._context.properties.of_material(material.step_id)
-        for name, values in sets.items():
-            of_material = f'of "{material.name}"'
-            yield from _from_value(
-                values.get("CompressiveStrength"), f"{name}.CompressiveStrength {of_material}"
-            )
-            yield from _from_value(
-                values.get("StrengthClass"), f"{name}.StrengthClass {of_material}"
-            )
+        yield from self._from_properties(material.step_id, f'of "{material.name}"')
         for text in dict.fromkeys((material.name, material.category, material.description)):
             yield from _from_text(text, f'material name "{text}"')
+
+    def _from_properties(self, step_id: int, of_material: str) -> Iterator[Said]:
+        """What the property sets of a material, or of a part of a set of them, say."""
+        for name, values in self._context.properties.of_material(step_id).items():
+            for strength in ("CompressiveStrength", "StrengthClass"):
+                yield from _from_value(values.get(strength), f"{name}.{strength} {of_material}")
 
 
 def strengths_told(properties: Iterable[tuple[str, str]]) -> Iterator[Said]:

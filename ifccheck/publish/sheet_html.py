@@ -283,10 +283,15 @@ def bar_row(bars: Bars, steel: Given | None) -> SteelRow:
             "goes on" if bars.start_beyond > 0.0 else str(bars.start_anchor),
             "goes on" if bars.end_beyond > 0.0 else str(bars.end_anchor),
         ),
-        strength=f"{steel.value:.0f}" if steel else "not known",
+        strength=_strength(steel),
         assumed=bool(steel and steel.assumed),
         origin=bars.origin,
     )
+
+
+def _strength(steel: Given | None) -> str:
+    known = steel is not None and not math.isnan(steel.value)
+    return f"{steel.value:.0f}" if steel and known else "not known"
 
 
 @cache
@@ -306,7 +311,7 @@ def stirrup_row(stirrups: Stirrups, steel: Given | None) -> SteelRow:
         start=metres(stirrups.start),
         end=metres(stirrups.end),
         ends="closed" if stirrups.closed else "open",
-        strength=f"{steel.value:.0f}" if steel else "not known",
+        strength=_strength(steel),
         assumed=bool(steel and steel.assumed),
         origin=stirrups.origin,
     )

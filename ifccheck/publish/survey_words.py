@@ -24,6 +24,8 @@ _BANDS = {State.INCOMPLETE: "none", State.DOUBTFUL: "u1", State.COMPLETE: "u3"}
 SETTLED = {
     "concrete strength unknown": "defaults.concrete_strength in the brief, or [[materials]]",
     "yield strength of the bars unknown": "defaults.bar_yield in the brief",
+    "yield strength of the bars cannot be read": "[[materials]] bar_yield in the brief",
+    "yield strength of the stirrups cannot be read": "[[materials]] stirrup_yield in the brief",
     "yield strength of the stirrups unknown": "defaults.stirrup_yield in the brief",
     "cover unknown": "defaults.cover in the brief",
     "no reinforcement found": "a schedule, a mapping of the project's own property sets, or"

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Sequence
 from typing import NamedTuple
 
@@ -95,9 +96,21 @@ def _yields(
     if len(given) < len(steel):
         findings.refuse(yield_unknown(what))
         return ()
+    for unread in dict.fromkeys(each.source for each in given if math.isnan(each.value)):
+        findings.refuse(yield_unread(what, unread))
+        return ()
     for assumed in dict.fromkeys([each for each in given if each.assumed]):
         findings.assume(f"yield strength of the {what}", assumed)
     return tuple(given)
+
+
+def yield_unread(what: str, source: str) -> str:
+    """Return the reason for which bars, or stirrups, of a grade that nobody can read are not
+    rated: a default is for models that are silent."""
+    return (
+        f"yield strength of the {what} cannot be read from {source}: state it in an entry of"
+        " [[materials]]"
+    )
 
 
 def yield_unknown(what: str) -> str:
