@@ -478,7 +478,7 @@ def test_a_solid_swept_over_an_unclear_part_is_a_reason() -> None:
     assert "beyond its ends" in model.read(beam).reasons
 
 
-def test_a_bar_of_faces_is_a_reason_and_its_axis_helps() -> None:
+def test_a_bar_of_no_faces_is_a_reason_and_its_axis_helps() -> None:
     model = ModelWithBars()
     beam = model.beam()
     create = model.file.create_entity
@@ -487,7 +487,7 @@ def test_a_bar_of_faces_is_a_reason_and_its_axis_helps() -> None:
     bar = model.bar([brep], 16.0, beam)
     model.aggregate(beam, [bar])
     found = model.read(beam)
-    assert "IfcFacetedBrep, which is not read yet" in found.reasons
+    assert "IfcFacetedBrep: its axis is not found" in found.reasons
     assert f"#{bar.id()}" in found.reasons
     axis = model.representation([model.curve(straight(50, 5950, 0, 60))], "Axis")
     bar.Representation.Representations = (*bar.Representation.Representations, axis)

@@ -7,7 +7,7 @@ from dataclasses import dataclass, field
 
 import numpy as np
 
-from ifccheck.ifc.bar_data import BarData, Data
+from ifccheck.ifc.bar_data import BarData, Data, Swept
 from ifccheck.ifc.bar_paths import Floats, Ints
 from ifccheck.ifc.bar_samples import PathTable, tabulate
 from ifccheck.ifc.bar_shapes import BarShapes, Strand
@@ -47,6 +47,8 @@ class Gathered:
     columns: BarColumns
     unreadable: dict[int, str] = field(default_factory=dict)
     """By the place of the product."""
+    notes: dict[int, str] = field(default_factory=dict)
+    """What is to be told of bars that were read, likewise."""
 
 
 class Matrices:
@@ -98,7 +100,7 @@ class BarReaders:
         """All centre lines that were read."""
         return self.swept_paths.with_more(tabulate(self.shapes.paths))
 
-    def settled(self, product: Entity, name: str, swept: float | None) -> Data:
+    def settled(self, product: Entity, name: str, swept: Swept | None) -> Data:
         """Return what is settled of a bar; raises UnreadableError."""
         data = self.data.of(product, product.id(), name, swept)
         if data.size < 0:
@@ -106,11 +108,17 @@ class BarReaders:
         return data
 
 
-def thinnest(strands: Sequence[Strand]) -> float | None:
+def thinnest(strands: Sequence[Strand]) -> Swept | None:
     """The least diameter of the strands of a bar; None where none has one."""
     if not strands:
         raise UnreadableError("has no shape")
-    return min((s.diameter for s in strands if s.diameter is not None), default=None)
+    known = ((s.diameter, s.widest or s.diameter) for s in strands if s.diameter is not None)
+    return min(known, default=None)
+
+
+def noted(strands: Sequence[Strand]) -> str:
+    """What is to be told of how the strands of a bar were read."""
+    return "; ".join(dict.fromkeys(strand.note for strand in strands if strand.note))
 
 
 def name_of(product: Entity) -> str:

@@ -71,6 +71,8 @@ class Data:
 
 NO_HINTS, NO_TYPE = _Hints(), _Type()
 NOTHING_SAID = (None, None, None, None)
+Swept = tuple[float, float]
+"""What the diameter of a body is at least and at most [mm]; both are the same but for polygons."""
 Related = tuple[int | None, int | None, tuple[int, ...] | None]
 """STEP ids of the type, the material and the property sets."""
 
@@ -88,7 +90,7 @@ class BarData:
         self._material_data: dict[int | None, Yields] = {}
         self._names: dict[str, str] = {}
 
-    def of(self, product: Entity, step_id: int, name: str, swept: float | None) -> Data:
+    def of(self, product: Entity, step_id: int, name: str, swept: Swept | None) -> Data:
         """Return what is settled of a bar."""
         argument = product.get_argument
         if product.is_a() == "IfcReinforcingBar":
@@ -133,7 +135,7 @@ class BarData:
         type_id: int | None,
         material: int | None,
         sets: tuple[int, ...] | None,
-        swept: float | None,
+        swept: Swept | None,
     ) -> Data:
         grade, diameter, area, role = said
         about = self._type(type_id)
@@ -166,7 +168,7 @@ class BarData:
         diameter: float | None,
         area: float | None,
         about: _Type,
-        swept: float | None,
+        swept: Swept | None,
         name: str,
         hints: _Hints,
     ) -> int:
@@ -174,7 +176,7 @@ class BarData:
         sources = [
             SizeSource("nominal diameter", _times(diameter, length)),
             SizeSource("nominal diameter of its type", _times(about.diameter, length)),
-            SizeSource("swept diameter", swept),
+            _body_size(swept),
             SizeSource("area", area=area_of_bar(area, self._context.units)),
             SizeSource("area of its type", area=area_of_bar(about.area, self._context.units)),
             SizeSource("name", designation=name),
@@ -243,6 +245,11 @@ def area_of_bar(area: float | None, units: ModelUnits) -> float | None:
         return None
     declared, by_length = (area * factor for factor in (units.area, units.length**2))
     return by_length if is_area_of_bar(by_length) and not is_area_of_bar(declared) else declared
+
+
+def _body_size(swept: Swept | None) -> SizeSource:
+    least, most = (None, None) if swept is None else swept
+    return SizeSource("swept diameter", least, most=most)
 
 
 def _looked_up(of: Mapping[int, int], ids: Sequence[int]) -> Ints:

@@ -3,21 +3,23 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import Any
 
 import numpy as np
 
-from ifccheck.ifc.bar_curves import read_path, read_swept_path
-from ifccheck.ifc.bar_paths import Path, rounded
-from ifccheck.ifc.entity import Entity, UnreadableError, get
-from ifccheck.ifc.placements import IDENTITY, Matrix, Placements, unit
+from ifccheck.ifc.bar_paths import Path
+from ifccheck.ifc.bar_solids import BarSolids, Drawn, end_to_end
+from ifccheck.ifc.entity import Entity, UnreadableError
+from ifccheck.ifc.placements import IDENTITY, Matrix, Placements
 from ifccheck.ifc.units import ModelUnits
 
 SAME_SCALE = 1e-6
 """Relative difference within which a mapped bar is not stretched."""
 FARTHEST = 1e11
 """Greatest coordinate [mm] of a place on the earth, and more."""
+IN_PARTS = "IfcRevolvedAreaSolid"
+"""A bar with such a bend is drawn in parts."""
 DEEPEST_MAPPING = 8
 """Mapped items within mapped items that are followed."""
 
@@ -30,6 +32,10 @@ class Strand:
     matrix: Matrix
     diameter: float | None
     """Swept diameter [mm]; None where only a centre line is given."""
+    widest: float | None
+    """What the diameter may be at most: greater where a polygon stands for a circle [mm]."""
+    note: str = ""
+    """What people are told of how it was read."""
 
 
 class BarShapes:
@@ -37,8 +43,8 @@ class BarShapes:
 
     def __init__(self, units: ModelUnits, placements: Placements) -> None:
         self.paths: list[Path] = []
-        self._units = units
         self._placements = placements
+        self._reader = BarSolids(units, placements)
         self._solids: dict[int, tuple[Strand, ...]] = {}
         self._maps: dict[int, tuple[Strand, ...]] = {}
         self._mapped_strands: dict[tuple[int, int], tuple[Strand, ...]] = {}
@@ -78,6 +84,9 @@ class BarShapes:
             items = representation.get_argument(3)
         if len(items) == 1:
             return self._item(items[0], depth)
+        if any(item.is_a() == IN_PARTS for item in items):
+            parts = [part for item in items for part in self._reader.of(item)]
+            return tuple(self._strand(bar) for bar in end_to_end(parts))
         return tuple(strand for item in items for strand in self._item(item, depth))
 
     def _item(self, item: Entity, depth: int) -> tuple[Strand, ...]:
@@ -85,7 +94,7 @@ class BarShapes:
             return self._mapped(item.get_argument(0), item.get_argument(1), depth)
         step_id = item.id()
         if step_id not in self._solids:
-            self._solids[step_id] = (self._solid(item),)
+            self._solids[step_id] = tuple(self._strand(bar) for bar in self._reader.of(item))
         return self._solids[step_id]
 
     def _mapped(self, source: Entity, target: Entity, depth: int) -> tuple[Strand, ...]:
@@ -103,39 +112,13 @@ class BarShapes:
         strands = self._representation(source.get_argument(1), depth + 1)
         return _moved(strands, self._placements.axes(source.get_argument(0)))
 
-    def _solid(self, item: Entity) -> Strand:
-        kind = item.is_a()
-        if kind in ("IfcSweptDiskSolid", "IfcSweptDiskSolidPolygonal"):
-            argument = item.get_argument
-            if argument(2):
-                raise UnreadableError("is hollow, which is not read")
-            path = read_swept_path(argument(0), argument(3), argument(4), self._units)
-            if kind == "IfcSweptDiskSolidPolygonal" and argument(5):
-                path = rounded(path, argument(5) * self._units.length)
-            return self._strand(path, IDENTITY, 2.0 * argument(1) * self._units.length)
-        if kind == "IfcExtrudedAreaSolid":
-            return self._extruded(item)
-        if item.is_a("IfcCurve"):
-            return self._strand(read_path(item, self._units), IDENTITY, None)
-        raise UnreadableError(f"has a body of kind {kind}, which is not read yet")
-
-    def _strand(self, path: Path, matrix: Matrix, diameter: float | None) -> Strand:
+    def _strand(self, bar: Drawn) -> Strand:
+        path = bar.path
         values = [value for point in path.points for value in point]
         if len(path.points) < 2 or not -FARTHEST < min(values) <= max(values) < FARTHEST:
             raise UnreadableError("has a centre line without length, or of no earthly length")
         self.paths.append(path)
-        return Strand(len(self.paths) - 1, matrix, diameter)
-
-    def _extruded(self, solid: Entity) -> Strand:
-        """A circle extruded: a straight bar."""
-        profile = solid[0]
-        if profile.is_a() != "IfcCircleProfileDef":
-            raise UnreadableError(f"is extruded from an {profile.is_a()}, which is not read yet")
-        centre = self._placements.axes(get(profile, "Position"))[:3, 3]
-        along = unit(solid[2][0]) * (solid[3] * self._units.length)
-        ends = tuple((float(x), float(y), float(z)) for x, y, z in (centre, centre + along))
-        diameter = 2.0 * get(profile, "Radius") * self._units.length
-        return self._strand(Path(ends), self._placements.axes(solid[1]), diameter)
+        return Strand(len(self.paths) - 1, IDENTITY, bar.least, bar.most, bar.note)
 
 
 def _body_and_axis(representations: Sequence[Entity]) -> tuple[Entity | None, Entity | None]:
@@ -155,10 +138,11 @@ def _moved(strands: tuple[Strand, ...], matrix: Matrix) -> tuple[Strand, ...]:
         return strands
     scale = _enlargement(matrix)
     return tuple(
-        Strand(
-            strand.path,
-            matrix if strand.matrix is IDENTITY else matrix @ strand.matrix,
-            None if strand.diameter is None else strand.diameter * scale,
+        replace(
+            strand,
+            matrix=matrix if strand.matrix is IDENTITY else matrix @ strand.matrix,
+            diameter=None if strand.diameter is None else strand.diameter * scale,
+            widest=None if strand.widest is None else strand.widest * scale,
         )
         for strand in strands
     )

@@ -19,6 +19,8 @@ SAME_DIAMETER = 0.06
 """Difference [mm] within which a diameter is that of a standard bar."""
 NAMED_DIAMETER = 1.26
 """Ratio of diameters up to which a size in a name or a property may mean the bar."""
+ROUNDED = 1.005
+"""Ratio of diameters within which one is still that of a polygon's circle."""
 LEAST_YIELD, GREATEST_YIELD = 200.0, 1000.0
 """Yield strengths of reinforcing bars [MPa] lie between these."""
 KSI = 6.894757
@@ -35,6 +37,9 @@ class SizeSource:
     designation: str = ""
     hint: bool = False
     """A number that may mean something else, such as one in a name."""
+    most: float | None = None
+    """Where a polygon stands for a bar: the diameter of the circle round it [mm]; ``diameter`` is
+    that of the circle within it."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -57,6 +62,7 @@ class _Statement:
     designation: str = ""
     by_area: bool = False
     hint: bool = False
+    most: float | None = None
 
 
 def settle_size(sources: Iterable[SizeSource]) -> BarSize | None:
@@ -67,6 +73,7 @@ def settle_size(sources: Iterable[SizeSource]) -> BarSize | None:
     nor is one of a bar that nobody makes. None where nothing credible is said.
     """
     said = [statement for source in sources if (statement := _statement(source)) is not None]
+    said = _without_agreeing_polygons(said)
     credible = [s for s in said if LEAST_DIAMETER <= s.diameter <= GREATEST_DIAMETER]
     credible = [s for s in credible if not _is_in_square_centimetres(s, credible)]
     credible = [s for s in credible if not s.hint or _may_be_meant(s, credible)]
@@ -79,6 +86,20 @@ def settle_size(sources: Iterable[SizeSource]) -> BarSize | None:
     return _agreed(credible, said)
 
 
+def _without_agreeing_polygons(said: list[_Statement]) -> list[_Statement]:
+    """The statements without polygons of whose circles another statement tells which is meant."""
+    return [
+        one
+        for one in said
+        if one.most is None
+        or not any(
+            one.diameter / ROUNDED <= other.diameter <= one.most * ROUNDED
+            for other in said
+            if other is not one
+        )
+    ]
+
+
 def _statement(source: SizeSource) -> _Statement | None:
     if source.designation:
         standard = _by_designation(source.designation)
@@ -88,8 +109,12 @@ def _statement(source: SizeSource) -> _Statement | None:
         )
     if source.diameter is not None and source.diameter > 0.0 and math.isfinite(source.diameter):
         area = math.pi * source.diameter**2 / 4.0
-        text = f"{source.source} {source.diameter:g} mm"
-        return _Statement(source.source, source.diameter, area, text, hint=source.hint)
+        most = source.most if source.most is not None and source.most > source.diameter else None
+        range_of = (
+            f"{source.diameter:g}" if most is None else f"{source.diameter:.4g} to {most:.4g}"
+        )
+        text = f"{source.source} {range_of} mm"
+        return _Statement(source.source, source.diameter, area, text, hint=source.hint, most=most)
     if source.area is not None and source.area > 0.0 and math.isfinite(source.area):
         diameter = math.sqrt(4.0 * source.area / math.pi)
         text = f"{source.source} {source.area:.4g} mm2"

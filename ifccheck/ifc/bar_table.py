@@ -54,6 +54,8 @@ class BarTable:
     """(S, 3) [mm]"""
     unreadable: Mapping[int, str]
     """What is wrong with products that could not be read, by their place."""
+    notes: Mapping[int, str]
+    """What is to be told of products that were read, by their place."""
 
     @property
     def rotation(self) -> Floats:
@@ -90,7 +92,8 @@ def gather_bars(context: Context, bars: Ints, statements: StepTable | None = Non
     others = read_thoroughly(readers, ((p, by_id(int(bars[p]))) for p in left.tolist()))
     columns = concatenated(plain.columns, others.columns)
     unreadable = plain.unreadable | others.unreadable
-    return _within_reach(_table(readers, bars, Gathered(columns, unreadable)))
+    notes = plain.notes | others.notes
+    return _within_reach(_table(readers, bars, Gathered(columns, unreadable, notes)))
 
 
 def _within_reach(table: BarTable) -> BarTable:
@@ -137,6 +140,7 @@ def _table(readers: BarReaders, bars: Ints, found: Gathered) -> BarTable:
         rotations=rotations,
         translation=translation,
         unreadable=dict(sorted(found.unreadable.items())),
+        notes=found.notes,
     )
 
 

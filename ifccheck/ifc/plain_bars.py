@@ -7,7 +7,7 @@ text tells which bars say the same; one of these is read through its entity for 
 from __future__ import annotations
 
 import re
-from collections.abc import Callable, Collection, Sequence
+from collections.abc import Callable, Collection, Mapping, Sequence
 from dataclasses import dataclass
 from typing import Generic, TypeVar, cast
 
@@ -19,6 +19,7 @@ from ifccheck.ifc.bar_columns import (
     BarReaders,
     Gathered,
     name_of,
+    noted,
     thinnest,
     what_is_wrong,
 )
@@ -83,6 +84,10 @@ class _Shapes:
     inner: Ints
     thickness: Floats
     """nan where no strand has a diameter."""
+    widest: Floats
+    """What the diameter is at most; it differs from ``thickness`` for polygons alone."""
+    notes: Mapping[int, str]
+    """What is to be told of bars of some shapes."""
     wrong: Sequence[str | None]
 
 
@@ -99,7 +104,16 @@ def read_plain_bars(readers: BarReaders, table: StepTable, bars: Ints) -> tuple[
     wrong = _wrong((shapes, parents, names, data))
     columns = _columns(texts.place, wrong.keys(), chains, (shapes, parents, names, data))
     unreadable = {int(texts.place[row]): text for row, text in wrong.items()}
-    return Gathered(columns, unreadable), others(len(bars), texts.place)
+    notes = _notes(shapes, texts.place, wrong)
+    return Gathered(columns, unreadable, notes), others(len(bars), texts.place)
+
+
+def _notes(shapes: _Shapes, place: Ints, wrong: Collection[int]) -> dict[int, str]:
+    """What is to be told of bars that were read, by their places."""
+    if not shapes.notes:
+        return {}
+    rows = np.flatnonzero(np.isin(shapes.number, list(shapes.notes))).tolist()
+    return {int(place[r]): shapes.notes[int(shapes.number[r])] for r in rows if r not in wrong}
 
 
 def _read_shapes(readers: BarReaders, table: StepTable, chains: Chains) -> _Shapes:
@@ -112,13 +126,15 @@ def _read_shapes(readers: BarReaders, table: StepTable, chains: Chains) -> _Shap
     read = solids[swept.place]
     thickness = np.full(len(row), np.nan)
     thickness[read] = swept.diameter
+    widest, notes = thickness.copy(), dict[int, str]()
     wrong: list[str | None] = [None] * len(row)
     strands: list[tuple[int, int, int]] = []
     for shape in others(len(row), read).tolist():
         found, wrong[shape] = _tried(lambda at: _strands(readers, chains, at), int(row[shape]))
         if found is not None:
-            thin = thinnest(found)
-            thickness[shape] = np.nan if thin is None else thin
+            thickness[shape], widest[shape] = thinnest(found) or (np.nan, np.nan)
+            if note := noted(found):
+                notes[shape] = note
             for strand in found:
                 inner = readers.inner.index(strand.matrix)
                 strands.append((shape, readers.path(strand), inner))
@@ -127,7 +143,7 @@ def _read_shapes(readers: BarReaders, table: StepTable, chains: Chains) -> _Shap
     columns = np.concatenate((columns, np.array(strands, dtype=np.intp).reshape(-1, 3)))
     shape, path, inners = columns[np.argsort(columns[:, 0], kind="stable")].T
     first = offsets(np.bincount(shape, minlength=len(row)))
-    return _Shapes(number, first, path, inners, thickness, wrong)
+    return _Shapes(number, first, path, inners, thickness, widest, notes, wrong)
 
 
 def _strands(readers: BarReaders, chains: Chains, row: int) -> tuple[Strand, ...]:
@@ -175,15 +191,17 @@ def _read_data(
     said = [column.first_of_each()[1] for column in texts.data]
     size = np.array(size_of, dtype=np.intp)[names.number]
     related = readers.data.relations_of(step_ids)
-    first, number = first_of_each(
-        np.column_stack((*said, size, *related, thickness.view(np.int64)))
-    )
+    widest = shapes.widest[shapes.number]
+    swept = [thickness.view(np.int64)]
+    if (shapes.widest > shapes.thickness).any():
+        swept.append(widest.view(np.int64))
+    first, number = first_of_each(np.column_stack((*said, size, *related, *swept)))
 
     def read(row: int) -> Data:
         product = readers.context.file.by_id(int(step_ids[row]))
-        swept = float(thickness[row])
+        least, most = float(thickness[row]), float(widest[row])
         name = names.values[int(names.number[row])] or ""
-        return readers.settled(product, name, None if np.isnan(swept) else swept)
+        return readers.settled(product, name, None if np.isnan(least) else (least, most))
 
     return shared(first, number, read)
 

@@ -74,6 +74,7 @@ def _physical(
     found = find_rows(places, ties.take(table.product))
     _tell_unreadable(table, bars, ties, frames, findings)
     _tell_astray(places, found.astray, findings)
+    _tell_notes(places, found.tied, findings)
     physical = reduce_bars(places, found.tied, findings)
     spoken_for = {row for row, step_id in enumerate(frames.ids) if step_id in described}
     _tell_without_main_bars(found, physical, findings, spoken_for)
@@ -122,6 +123,16 @@ def _tell_unreadable(
     for bar, text in table.unreadable.items():
         for beam in ties.of(bar).beams:
             findings.reason(index[beam], text, (f"#{bars[bar]}",))
+
+
+def _tell_notes(places: BarPlaces, tied: Rows, findings: Findings) -> None:
+    notes, table = places.table.notes, places.table
+    if not notes:
+        return
+    product = table.product[table.bar[tied.strand]]
+    for row in np.flatnonzero(np.isin(product, list(notes))).tolist():
+        bar = (places.label(tied.strand.item(row)),)
+        findings.remark(tied.beam.item(row), notes[product.item(row)], bar)
 
 
 def _tell_astray(places: BarPlaces, astray: Rows, findings: Findings) -> None:

@@ -12,6 +12,7 @@ from ifccheck.ifc.bar_columns import (
     BarReaders,
     Gathered,
     name_of,
+    noted,
     thinnest,
     what_is_wrong,
 )
@@ -28,7 +29,7 @@ def read_thoroughly(readers: BarReaders, products: Iterable[tuple[int, Entity]])
             found.add(place, product)
         except (UnreadableError, *ILL_TYPED) as error:
             unreadable[place] = what_is_wrong(error)
-    return Gathered(found.columns(), unreadable)
+    return Gathered(found.columns(), unreadable, found.notes)
 
 
 class _Bars:
@@ -41,6 +42,7 @@ class _Bars:
         self._moves: list[Sequence[float]] = []
         self._strands: list[tuple[int, int, int]] = []
         """Bar, path and inner matrix of each strand."""
+        self.notes: dict[int, str] = {}
 
     def add(self, place: int, product: Entity) -> None:
         """Add one product; raises UnreadableError."""
@@ -54,6 +56,8 @@ class _Bars:
         self._names.append(name)
         self._data.append(data)
         self._moves.append(move)
+        if note := noted(strands):
+            self.notes[place] = note
         for strand in strands:
             inner = readers.inner.index(strand.matrix)
             self._strands.append((bar, readers.path(strand), inner))
