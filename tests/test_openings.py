@@ -528,12 +528,12 @@ def test_more_opening_is_never_more_strength() -> None:
 
 def test_bars_near_an_opening_are_no_better_anchored_than_by_their_distance_from_it() -> None:
     """Bars at z = 62, the opening's edge 20 mm above them: dcs is 20 + 12.6, not 60."""
-    from ifccheck.rating.covers import cover_distances
+    from ifccheck.rating.covers import bonds_of
 
     made = subject(loads=(line("floor", 2.0),))
     opened = with_openings(made, hole(2500, 100, 94.6, 100))
-    assert cover_distances([made])[0] == pytest.approx(60.0)
-    assert cover_distances([opened])[0] == pytest.approx(32.6)
+    assert bonds_of([made]).cover_distance[0] == pytest.approx(60.0)
+    assert bonds_of([opened]).cover_distance[0] == pytest.approx(32.6)
 
 
 def test_stirrups_are_looked_at_where_they_are() -> None:

@@ -395,14 +395,15 @@ def test_the_weight_of_a_taper_in_two_ways_is_its_volume() -> None:
 
 
 def test_cover_is_the_least_along_the_bar() -> None:
-    from ifccheck.rating.assembly import cover_distances
+    from ifccheck.rating.covers import bonds_of
 
     beam = subject(top=0, bottom=1)
     bars = (replace(beam.bars[0], z=362.0, ys=(0.0,)),)
     runs = taper((0.0, box(300, 0, 800)), (LENGTH, box(300, 300, 800)))
-    assert cover_distances([with_runs(replace(beam, bars=bars), *runs)])[0] == pytest.approx(62.0)
+    found = bonds_of([with_runs(replace(beam, bars=bars), *runs)]).cover_distance[0]
+    assert found == pytest.approx(62.0)
     short: tuple[Bars, ...] = (replace(bars[0], end=3000.0),)
-    found = cover_distances([with_runs(replace(beam, bars=short), *runs)])[0]
+    found = bonds_of([with_runs(replace(beam, bars=short), *runs)]).cover_distance[0]
     assert found == pytest.approx(min(150.0, 212.0), rel=0.01)
 
 

@@ -90,11 +90,11 @@ def without_clashes(model: Measured, runs: Runs, beam: Ints) -> tuple[Runs, Bool
         np.rint(np.abs(np.diff(runs.line[:, :, 1:], axis=1)).max(axis=(1, 2)) / LEAN),
         np.zeros(len(diameter)),
     )
-    pairs = list(_clashes(runs, beam, diameter))
+    pairs = list(near_pairs(runs, beam, diameter, TOUCHING))
     if not pairs:
         return runs, held.counted
     for run in {run for pair in pairs for run in pair}:
-        held.force[run] = _force(model, int(runs.row[run]))
+        held.force[run] = force_of(model, int(runs.row[run]))
     for one, other in pairs:
         _settle(model, runs, held, one, other)
     cut = replace(
@@ -127,17 +127,19 @@ def _settle(model: Measured, runs: Runs, held: _Counted, one: int, other: int) -
     model.findings.remark(int(model.rows.beam[runs.row[one]]), text, names)
 
 
-def _force(model: Measured, row: int) -> float:
+def force_of(model: Measured, row: int) -> float:
+    """Area by yield strength of the bar of a row [N]."""
     strength = model.strength(row)
     return model.size(row).area * (strength.value if strength else USUAL_YIELD)
 
 
-def _clashes(runs: Runs, beam: Ints, diameter: Floats) -> Iterator[tuple[int, int]]:
-    """Pairs of runs that lie nearer to one another than bars can."""
+def near_pairs(runs: Runs, beam: Ints, diameter: Floats, part: float) -> Iterator[tuple[int, int]]:
+    """Pairs of runs whose centres are nearer than a part of their mean diameter, over more than a
+    crossing."""
     if len(beam) < 2:
         return
     middle, lean = runs.line.mean(axis=1), np.abs(np.diff(runs.line, axis=1)).max(axis=0)[0]
-    reach = TOUCHING * float(diameter.max())
+    reach = part * float(diameter.max())
     cluster = group(beam, middle[:, 1], reach + lean[1])
     cluster = group(cluster, middle[:, 2], reach + lean[2])
     order = np.argsort(cluster, kind="stable")
@@ -148,17 +150,17 @@ def _clashes(runs: Runs, beam: Ints, diameter: Floats) -> Iterator[tuple[int, in
         if not first.size:
             return
         one, other = order[first], order[first + step]
-        near = _in_one_another(runs, diameter, one, other)
+        near = _near_one_another(runs, diameter, part, one, other)
         yield from zip(one[near].tolist(), other[near].tolist(), strict=True)
 
 
-def _in_one_another(runs: Runs, diameter: Floats, one: Ints, other: Ints) -> Bools:
-    """Whether the centre lines of pairs of runs are too near over more than a crossing."""
+def _near_one_another(runs: Runs, diameter: Floats, part: float, one: Ints, other: Ints) -> Bools:
+    """Whether the centre lines of pairs of runs are near over more than a crossing."""
     a, b = runs.line[one], runs.line[other]
     start, end = np.maximum(a[:, 0, 0], b[:, 0, 0]), np.minimum(a[:, 1, 0], b[:, 1, 0])
     at_start = _section_place(a, start) - _section_place(b, start)
     change = _section_place(a, end) - _section_place(b, end) - at_start
-    reach = TOUCHING * (diameter[one] + diameter[other]) / 2.0
+    reach = part * (diameter[one] + diameter[other]) / 2.0
     near = _share_within(at_start, change, reach) * np.maximum(end - start, 0.0)
     return np.asarray(near > CLASH * np.minimum(diameter[one], diameter[other]))
 

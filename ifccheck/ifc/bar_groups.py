@@ -8,7 +8,9 @@ from dataclasses import dataclass, fields, replace
 import numpy as np
 
 from ifccheck.beam import Anchor, Bars
+from ifccheck.ifc.bar_bundles import judge_bundles
 from ifccheck.ifc.bar_clashes import without_clashes
+from ifccheck.ifc.bar_joints import joined
 from ifccheck.ifc.bar_levels import Levels, equal_bars, in_levels
 from ifccheck.ifc.bar_paths import Bools, Floats, Ints
 from ifccheck.ifc.bars import Runs
@@ -26,6 +28,8 @@ def longitudinal_bars(model: Measured, runs: Runs) -> dict[int, tuple[Bars, ...]
     bent = runs.row[runs.poor_bend]
     model.remark(bent, "ends in a bend short of a standard hook: taken as straight")
     runs, counted = without_clashes(model, runs, beam)
+    judge_bundles(model, runs, beam, counted)
+    runs = joined(model, runs, beam, counted)
     levels = in_levels(model.places.frames, beam, runs)
     crossing = np.unique(levels.of[levels.crosses])
     model.remark(runs.row[crossing], "crosses the middle of the section, not counted there")

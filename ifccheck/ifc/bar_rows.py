@@ -12,6 +12,7 @@ from ifccheck.ifc.bar_pieces import CentreLines, place
 from ifccheck.ifc.bar_samples import Samples, sample
 from ifccheck.ifc.bar_table import BarTable
 from ifccheck.ifc.beam_frames import BeamFrames
+from ifccheck.ifc.couplers import Couplers
 from ifccheck.ifc.equal_rows import first_of_each, first_of_each_number
 
 ROTATION_STEPS, PLACE_STEPS = 1e7, 1e4
@@ -36,15 +37,21 @@ NO_ROWS = Rows(np.zeros(0, dtype=np.intp), np.zeros(0, dtype=np.intp))
 class BarPlaces:
     """Places the strands of a table in the axes of beams."""
 
-    def __init__(self, table: BarTable, frames: BeamFrames) -> None:
+    def __init__(self, table: BarTable, frames: BeamFrames, couplers: Couplers) -> None:
         self.table = table
         self.frames = frames
+        self._couplers = couplers
         self.samples: Samples = sample(table.paths)
         self.size: Ints = table.size[table.bar]
         self.grade: Ints = table.grade[table.bar]
         """Size and grade of each strand."""
         thick = np.array([size.diameter for size in table.sizes], dtype=float)
         self.diameter: Floats = thick[self.size]
+
+    def coupled(self, beam: Ints, places: Floats) -> Bools:
+        """Whether a coupler stands at each place in the axes of a beam (N, 3)."""
+        turned = np.einsum("nij,ni->nj", self.frames.rotation[beam], places)
+        return self._couplers.at(self.frames.origin[beam] + turned)
 
     def label(self, strand: int) -> str:
         """What people call the bar of a strand."""

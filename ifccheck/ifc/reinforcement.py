@@ -16,6 +16,7 @@ from ifccheck.ifc.bar_table import BarTable, gather_bars
 from ifccheck.ifc.bar_ties import Found, find_rows
 from ifccheck.ifc.beam_frames import BeamFrames, make_frames
 from ifccheck.ifc.context import BeamFrame, Context
+from ifccheck.ifc.couplers import Couplers
 from ifccheck.ifc.described import read_described
 from ifccheck.ifc.entity import Entity, label
 from ifccheck.ifc.physical import Physical, reduce_bars
@@ -70,7 +71,7 @@ def _physical(
     _tell_meshes(context, finder, frames, findings)
     bars, ties = _tied_bars(context, finder, statements)
     table = gather_bars(context, bars, statements)
-    places = BarPlaces(table, frames)
+    places = BarPlaces(table, frames, Couplers(context))
     found = find_rows(places, ties.take(table.product))
     _tell_unreadable(table, bars, ties, frames, findings)
     _tell_astray(places, found.astray, findings)

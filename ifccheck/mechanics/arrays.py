@@ -58,6 +58,11 @@ class Members:
     overhang_right: Floats
     flange_thickness: Floats
     """Thickness of that flange [mm] (K); 0 without one"""
+    layer_bundle: Ints | None = None
+    """The most bars that are in contact with a bar of the layer, itself included (B, L); None
+    where none is"""
+    layer_lapped: Bools | None = None
+    """Some bar of the layer laps another (B, L); None where none does"""
     layer_beyond: Floats | None = None
     """Length of the same bars beyond start and end of the layer [mm] (B, L, 2), where they go on
     bent or at another height and develop too; None where none does"""

@@ -23,7 +23,7 @@ from ifccheck.mechanics.arrays import (
     Stations,
 )
 from ifccheck.mechanics.width_profile import pack_strips
-from ifccheck.rating.covers import column, cover_distances
+from ifccheck.rating.covers import bonds_of, column
 from ifccheck.rating.disturbed import disturbed
 from ifccheck.rating.runs import (
     DRAWN,
@@ -211,6 +211,7 @@ def _layers(subjects: Sequence[Subject]) -> dict[str, Any]:
         table[beam, slot] = column(values)
         return table
 
+    bonds = bonds_of(subjects)
     beyond = np.stack(
         [packed(bar.start_beyond for bar in bars), packed(bar.end_beyond for bar in bars)], axis=-1
     )
@@ -233,7 +234,9 @@ def _layers(subjects: Sequence[Subject]) -> dict[str, Any]:
         "layer_end": packed(bar.end for bar in bars),
         "layer_start_anchor": anchors[0],
         "layer_end_anchor": anchors[1],
-        "layer_cover_distance": packed(cover_distances(subjects)),
+        "layer_cover_distance": packed(bonds.cover_distance),
+        "layer_bundle": packed(bonds.bundle, 1.0).astype(np.intp),
+        "layer_lapped": packed(bonds.lapped).astype(np.bool_),
         "layer_beyond": beyond if beyond.any() else None,
     }
 

@@ -4,12 +4,19 @@ from __future__ import annotations
 
 from collections import defaultdict
 from collections.abc import Iterable, Iterator, Sequence
+from dataclasses import dataclass, fields
 
 import numpy as np
 
 from ifccheck.beam import Bars, Outline, Run
-from ifccheck.mechanics.arrays import Floats, Ints
-from ifccheck.mechanics.spacing import distance_to_surface, nearest_neighbour
+from ifccheck.mechanics.arrays import Bools, Floats, Ints
+from ifccheck.mechanics.spacing import (
+    BarPlace,
+    bundled,
+    distance_to_surface,
+    lapped,
+    nearest_neighbour,
+)
 from ifccheck.rating.runs import outline_at
 from ifccheck.rating.subject import Subject
 
@@ -19,27 +26,40 @@ def column(values: Iterable[float]) -> Floats:
     return np.fromiter(values, dtype=np.float64)
 
 
-def cover_distances(subjects: Sequence[Subject]) -> Floats:
-    """dcs of each layer of all beams, one after another.
+@dataclass(frozen=True, slots=True)
+class Bonds:
+    """What the development of each layer depends on beside its own steel (L)."""
 
-    The least over its bars of the distance of the bar's centre from the concrete surface and of
-    2/3 of the centre spacing (CSA A23.3 and others) [mm] (L).
-    """
+    cover_distance: Floats
+    """dcs: the least over its bars of the distance of the bar's centre from the concrete surface
+    and of 2/3 of the centre spacing (CSA A23.3 and others) [mm]"""
+    bundle: Ints
+    """Bars in contact, itself included: the most over its bars"""
+    lapped: Bools
+    """Some bar of it laps another"""
+
+
+def bonds_of(subjects: Sequence[Subject]) -> Bonds:
+    """How the layers of all beams are bonded, one after another."""
     layers = [bar for subject in subjects for bar in subject.bars]
     sizes = np.array([len(bar.ys) for bar in layers], dtype=np.intp)
     layer = np.repeat(np.arange(sizes.size), sizes)
     y = column(place for bar in layers for place in bar.ys)
-    z, start, end = (
-        column(getattr(bar, name) for bar in layers)[layer] for name in ("z", "start", "end")
+    z, start, end, diameter, start_beyond, end_beyond = (
+        column(getattr(bar, name) for bar in layers)[layer]
+        for name in ("z", "start", "end", "diameter", "start_beyond", "end_beyond")
     )
     counts = np.array([sum(len(bar.ys) for bar in subject.bars) for subject in subjects])
-    nearest = np.minimum(
-        _to_surface(subjects, y, z, start, end, counts), _spacing(y, z, start, end, counts)
-    )
+    places = BarPlace(y, z, diameter, start, end, start - start_beyond, end + end_beyond)
+    spacing, bundle, laps = _neighbours(places, counts)
+    nearest = np.minimum(_to_surface(subjects, y, z, start, end, counts), spacing * 2.0 / 3.0)
     least = np.full(sizes.size, np.inf)
     np.minimum.at(least, layer, nearest)
     _share_between_pieces(subjects, layers, least)
-    return least
+    most, lapped = np.ones(sizes.size, dtype=np.intp), np.zeros(sizes.size, dtype=np.bool_)
+    np.maximum.at(most, layer, bundle)
+    np.logical_or.at(lapped, layer, laps)
+    return Bonds(least, most, lapped)
 
 
 def _share_between_pieces(
@@ -103,11 +123,18 @@ def _within(run: Run, bars: Ints, start: Floats, end: Floats) -> Iterator[tuple[
             yield outline_at(run, place), np.array([row])
 
 
-def _spacing(y: Floats, z: Floats, start: Floats, end: Floats, counts: Ints) -> Floats:
-    """2/3 of the distance of each bar to the nearest one beside it [mm]."""
+def _neighbours(places: BarPlace, counts: Ints) -> tuple[Floats, Ints, Bools]:
+    """Distance of each bar to the nearest beside it that is none of its bundle [mm], the bars of
+    that bundle, and whether it laps another."""
     first = np.cumsum(counts) - counts
-    spacing = np.empty(y.size)
+    total = places.y.size
+    spacing, bundle = np.empty(total), np.ones(total, dtype=np.intp)
+    laps = np.zeros(total, dtype=np.bool_)
     for count in np.unique(counts[counts > 0]).tolist():
         bars = first[counts == count][:, None] + np.arange(count)
-        spacing[bars] = nearest_neighbour(y[bars], z[bars], start[bars], end[bars])
-    return spacing * 2.0 / 3.0
+        of_beams = BarPlace(*(getattr(places, one.name)[bars] for one in fields(places)))
+        together = bundled(of_beams)
+        spacing[bars] = nearest_neighbour(of_beams, together)
+        bundle[bars] += together.sum(axis=-1)
+        laps[bars] = lapped(of_beams)
+    return spacing, bundle, laps

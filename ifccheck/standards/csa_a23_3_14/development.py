@@ -89,6 +89,42 @@ def development_length(
     return np.maximum(length, LEAST_DEVELOPMENT_LENGTH)
 
 
+BUNDLED = (1.0, 1.1, 1.2, 1.33)
+"""How much longer single bars and those of bundles of two, three and four bars develop (12.4.1,
+from memory)"""
+
+LAPPED = 1.3
+"""How much longer a tension lap of class B is than the development length (12.15.1)"""
+
+
+def bundle_factor(bars: Ints) -> Floats:
+    """How many times longer each bar of a bundle develops than a bar alone.
+
+    1.0, 1.1, 1.2 and 1.33 for 1, 2, 3 and 4 bars
+
+    Parameters
+    ----------
+    bars : array of int
+        Bars in contact.
+
+    Returns
+    -------
+    array [1]
+        inf for more than four bars, which no bundle may have (7.4.2, from memory).
+
+    Examples
+    --------
+    >>> bundle_factor(np.array([1, 2, 3, 4, 5])).tolist()
+    [1.0, 1.1, 1.2, 1.33, inf]
+
+    References
+    ----------
+    CSA A23.3-14, 12.4.1 (from memory)
+    """
+    factors = np.array([*BUNDLED, np.inf])
+    return np.asarray(factors[np.clip(bars, 1, len(factors)) - 1])
+
+
 def hook_development_length(
     *,
     diameter: Floats,

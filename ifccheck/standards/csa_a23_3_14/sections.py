@@ -211,22 +211,25 @@ def _layers(members: Members) -> Layers:
     m = members
     strength = m.concrete_strength[:, None]
     density = m.density_factor[:, None]
-    straight = development.development_length(
+    bundle = np.ones_like(m.layer_area, dtype=np.intp) if m.layer_bundle is None else m.layer_bundle
+    longer = _longer(m, bundle)
+    straight = longer * development.development_length(
         diameter=m.layer_diameter,
         steel_yield=m.layer_yield,
         concrete_strength=strength,
-        cover_distance=m.layer_cover_distance,
+        # a bundle counts as one bar of equal area, whose cover is told in its own diameters
+        cover_distance=m.layer_cover_distance / np.sqrt(bundle),
         top_bar=m.layer_height > development.DEPTH_BELOW_TOP_BARS,
         density_factor=density,
         bar_area=m.layer_bar_area,
     )
-    hooked = development.hook_development_length(
+    hooked = longer * development.hook_development_length(
         diameter=m.layer_diameter,
         steel_yield=m.layer_yield,
         concrete_strength=strength,
         density_factor=density,
     )
-    least = development.compression_development_length(
+    least = longer * development.compression_development_length(
         diameter=m.layer_diameter, steel_yield=m.layer_yield, concrete_strength=strength
     )
     pulled = [
@@ -242,6 +245,18 @@ def _layers(members: Members) -> Layers:
         m.layer_height, m.layer_area, m.layer_diameter, m.layer_yield, m.layer_start, m.layer_end,
         *(*pulled, *pushed, *_beyond(m)),
     )  # fmt: skip
+
+
+def _longer(members: Members, bundle: Ints) -> Floats:
+    """How many times longer the bars of each layer develop for being bundled or lapped.
+
+    Every tension lap is taken as one of class B (12.15.2); bars develop over the whole of it, so
+    that two of them give no more than one where the lap is just as long as that class asks for.
+    """
+    factor = development.bundle_factor(bundle)
+    if members.layer_lapped is None:
+        return factor
+    return np.where(members.layer_lapped, development.LAPPED, 1.0) * factor
 
 
 def _beyond(members: Members) -> tuple[Floats, Floats]:
