@@ -300,7 +300,7 @@ def test_stations_where_the_moment_turns_find_the_greatest_moment() -> None:
     loads = loads_of(drawn, 1)
     coarse = make_stations(spans, loads, NONE, 12)
     first = combine(case_effects(spans, loads, coarse, 3), FACTORS)
-    beam, x = turning_places(first.cases, FACTORS)
+    beam, x = turning_places(first.cases, FACTORS).places()
     np.testing.assert_allclose(x, 5.0 / 8.0 * LENGTH, rtol=1e-6)
     finer = make_stations(spans, loads, places(beam, x, two_sided=False), 12)
     second = combine(case_effects(spans, loads, finer, 3), FACTORS)
@@ -314,7 +314,7 @@ def test_stations_where_the_moment_turns_find_the_greatest_moment() -> None:
 def test_no_moment_between_stations_exceeds_that_at_the_turning_places(drawn: list[Drawn]) -> None:
     spans, loads = six_spans(), loads_of(drawn, 6)
     coarse = make_stations(spans, loads, NONE)
-    beam, x = turning_places(case_effects(spans, loads, coarse, 3), FACTORS)
+    beam, x = turning_places(case_effects(spans, loads, coarse, 3), FACTORS).places()
     found = make_stations(spans, loads, places(beam, x, two_sided=False))
     fine = make_stations(spans, loads, NONE, 2000)
     ours = combine(case_effects(spans, loads, found, 3), FACTORS)
@@ -335,7 +335,7 @@ def test_a_moment_that_changes_sign_and_back_between_two_stations_is_found() -> 
     coarse = combine(case_effects(spans, loads, make_stations(spans, loads, NONE), 3), FACTORS)
     simple = coarse.cases.beam == 0
     assert not (coarse.moment[:, LEAST_MOMENT, simple] < 0.0).any()
-    beam, x = turning_places(coarse.cases, FACTORS)
+    beam, x = turning_places(coarse.cases, FACTORS).places()
     stations = make_stations(spans, loads, places(beam, x, two_sided=False))
     finer = combine(case_effects(spans, loads, stations, 3), FACTORS)
     assert (finer.moment[:, LEAST_MOMENT, stations.beam == 0] < 0.0).any()

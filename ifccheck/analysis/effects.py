@@ -320,9 +320,33 @@ def _bounds_between(cases: CaseEffects, sign: float) -> tuple[Ints, Ints, Floats
     return case, cases.beam[row], np.maximum(low + before * reach, low)
 
 
-def turning_places(
-    cases: CaseEffects, factors: Floats, *, alone: bool = True
-) -> tuple[Ints, Floats]:
+@dataclass(frozen=True, slots=True)
+class Turns:
+    """Places between stations where the moment of a combination, or of a case alone, turns (T)."""
+
+    row: Ints
+    """Station before each"""
+    beam: Ints
+    x: Floats
+    """[mm]"""
+    moment: Floats
+    """About what it reaches there, sagging positive [N*mm]"""
+
+    def take(self, rows: Ints | Bools) -> Turns:
+        """Some of them."""
+        return Turns(self.row[rows], self.beam[rows], self.x[rows], self.moment[rows])
+
+    def places(self) -> tuple[Ints, Floats]:
+        """Row of the beam and x [mm] of each place, once, sorted: to be made stations."""
+        x = np.round(self.x, 3)
+        order = np.lexsort((x, self.beam))
+        beam, x = self.beam[order], x[order]
+        new: Bools = np.ones(len(x), np.bool_)
+        new[1:] = (beam[1:] != beam[:-1]) | (x[1:] != x[:-1])
+        return beam[new], x[new]
+
+
+def turning_places(cases: CaseEffects, factors: Floats, *, alone: bool = True) -> Turns:
     """Places between stations where the moment of a combination, or of a case alone, turns.
 
     Between two stations a case keeps the factor that fits the sum of its moments at both, and
@@ -336,53 +360,44 @@ def turning_places(
         Unfavourable and favourable factor of each case (C, K, 2).
     alone
         Whether the moments of the cases alone are looked at, too.
-
-    Returns
-    -------
-    tuple
-        Row of the beam and x [mm] of each, to be made stations.
     """
     greater, lesser = factors.max(axis=2), factors.min(axis=2)
     if alone:
         single = np.eye(greater.shape[1])
         greater, lesser = np.concatenate([greater, single]), np.concatenate([lesser, single])
     found = [_turns(cases, greater, lesser, sign) for sign in (1.0, -1.0)]
-    beam = np.concatenate([part[0] for part in found])
-    x = np.concatenate([part[1] for part in found])
-    x = np.round(x, 3)
-    order = np.lexsort((x, beam))
-    beam, x = beam[order], x[order]
-    new = np.ones(len(x), np.bool_)
-    new[1:] = (beam[1:] != beam[:-1]) | (x[1:] != x[:-1])
-    return beam[new], x[new]
+    return Turns(
+        *(np.concatenate([getattr(part, name) for part in found]) for name in Turns.__slots__)
+    )
 
 
-def _turns(cases: CaseEffects, greater: Floats, lesser: Floats, sign: float) -> tuple[Ints, Floats]:
+def _turns(cases: CaseEffects, greater: Floats, lesser: Floats, sign: float) -> Turns:
     """Where the greatest sagging (sign 1) or hogging (sign -1) moment lies within an interval."""
     rows = _may_turn(cases, sign) if lesser.min(initial=0.0) >= 0.0 else np.arange(cases.x.size - 1)
     gap = cases.x[rows + 1] - cases.x[rows]
     rows = rows[(cases.beam[rows + 1] == cases.beam[rows]) & (gap > 1.0)]
-    moment, after = cases.moment[:, rows] * sign, cases.moment[:, rows + 1] * sign
-    worse = moment + after > 0.0
+    moment, after = (cases.moment.take(at, axis=1) * sign for at in (rows, rows + 1))
+    worse: Bools = moment + after > 0.0
 
     def combined(effect: Floats) -> Floats:
         return _weighted(greater, effect * worse) + _weighted(lesser, effect * ~worse)
 
-    first, last = (combined(cases.shear[:, at] * sign) for at in (rows, rows + 1))
+    first, last = (combined(cases.shear.take(at, axis=1) * sign) for at in (rows, rows + 1))
     combination, interval = np.nonzero((first > 0.0) & (last < 0.0))
-    before, after = first[combination, interval], last[combination, interval]
+    before, beyond = first[combination, interval], last[combination, interval]
     full = np.where(worse[:, interval], greater.T[:, combination], lesser.T[:, combination])
     start = (full * moment[:, interval]).sum(axis=0)
     at = rows[interval]
-    part, width = before / (before - after), cases.x[at + 1] - cases.x[at]
+    part, width = before / (before - beyond), cases.x[at + 1] - cases.x[at]
     apex = start + before * part * width / 2.0
-    inner = (part > 1e-3) & (part < 1.0 - 1e-3) & (apex > 0.0)
-    return cases.beam[at[inner]], (cases.x[at] + part * width)[inner]
+    inner: Bools = (part > 1e-3) & (part < 1.0 - 1e-3) & (apex > 0.0)
+    found = Turns(at, cases.beam[at], cases.x[at] + part * width, apex * sign)
+    return found.take(inner)
 
 
 def _may_turn(cases: CaseEffects, sign: float) -> Ints:
-    """Intervals at whose start some case's shear rises the moment of that sense and at whose end
+    """Intervals at whose start some case's shear raises the moment of that sense and at whose end
     some case's lowers it: no sum of theirs, each times a factor not below 0, turns elsewhere."""
-    rising = (cases.shear[:, :-1] * sign > 0.0).any(axis=0)
-    falling = (cases.shear[:, 1:] * sign < 0.0).any(axis=0)
-    return np.flatnonzero(rising & falling)
+    rising: Bools = np.any(cases.shear * sign > 0.0, axis=0)
+    falling: Bools = np.any(cases.shear * sign < 0.0, axis=0)
+    return np.flatnonzero(rising[:-1] & falling[1:])

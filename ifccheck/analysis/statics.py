@@ -104,22 +104,50 @@ def case_effects(
     ----------
     First principles: equilibrium, and the elastic line by brackets.
     """
+    return effects_at(solve(spans, loads, cases), stations, deflections)
+
+
+@dataclass(frozen=True, slots=True)
+class Solved:
+    """Spans with what follows from all their loads."""
+
+    spans: SpanTable
+    loads: LoadTable
+    """With x from the start of their span, none beyond a supported end"""
+    totals: Brackets
+    """What all loads of each case do about the end of each span (K, B)"""
+    start: _Start
+    force_scale: Floats
+    """Sum of the sizes of each case's loads on each beam, as a force [N] (K, B)"""
+    moment_scale: Floats
+    """The same as a moment [N*mm]"""
+
+
+def solve(spans: SpanTable, loads: LoadTable, cases: int) -> Solved:
+    """Find the reactions of every span; parameters as for ``case_effects``."""
     require_standing(spans)
     local = _within_spans(spans, loads)
     totals = sum_brackets(local, _span_ends(spans), cases)
-    start = _start_constants(spans, totals)
-    left = sum_brackets(local, _sections(spans, stations), cases, integrals=deflections)
+    return Solved(
+        spans, local, totals, _start_constants(spans, totals), *_load_scales(spans, local, cases)
+    )
+
+
+def effects_at(solved: Solved, stations: StationTable, deflections: bool = True) -> CaseEffects:
+    """Moment, shear and deflection of every case at every station; see ``case_effects``."""
+    spans, start, totals = solved.spans, solved.start, solved.totals
+    cases = len(totals.force)
+    left = sum_brackets(solved.loads, _sections(spans, stations), cases, integrals=deflections)
     moment, shear = _along(spans, stations, start, left)
     first = stations.first_rows(len(spans.start))
-    force_scale, moment_scale = _load_scales(spans, local, cases)
     return CaseEffects(
         beam=stations.beam,
         x=stations.x,
-        moment=_without_noise(moment, stations, first, moment_scale),
-        shear=_without_noise(shear, stations, first, force_scale),
+        moment=_without_noise(moment, stations, first, solved.moment_scale),
+        shear=_without_noise(shear, stations, first, solved.force_scale),
         deflection=_deflection(spans, stations, start, left) if deflections else None,
         reactions=np.stack([start.reaction, totals.force - start.reaction], axis=-1),
-        end_moments=_end_moments(spans, local, start, totals),
+        end_moments=_end_moments(spans, solved.loads, start, totals),
     )
 
 
@@ -219,19 +247,19 @@ def _by_pair(
     free_fixed: Floats,
 ) -> Floats:
     """The value of each span's own pair of supports (K, B)."""
-    start, end = spans.start_kind, spans.end_kind
-    return np.select(
-        [
-            (start == PINNED) & (end == PINNED),
-            (start == PINNED) & (end == FIXED),
-            (start == FIXED) & (end == PINNED),
-            (start == FIXED) & (end == FIXED),
-            (start == FIXED) & (end == FREE),
-            (start == FREE) & (end == FIXED),
-        ],
-        [pinned_pinned, pinned_fixed, fixed_pinned, fixed_fixed, fixed_free, free_fixed],
-        default=np.nan,
-    )
+    values = np.full_like(pinned_pinned, np.nan)
+    for (start, end), value in {
+        (PINNED, PINNED): pinned_pinned,
+        (PINNED, FIXED): pinned_fixed,
+        (FIXED, PINNED): fixed_pinned,
+        (FIXED, FIXED): fixed_fixed,
+        (FIXED, FREE): fixed_free,
+        (FREE, FIXED): free_fixed,
+    }.items():
+        held = np.flatnonzero((spans.start_kind == start) & (spans.end_kind == end))
+        if held.size:
+            values[:, held] = value[:, held]
+    return values
 
 
 def _along(
@@ -240,9 +268,13 @@ def _along(
     """Moment and shear at every station (K, N)."""
     beam = stations.beam
     s = stations.x - spans.start[beam]
-    reaction = start.reaction[:, beam]
-    moment = start.moment[:, beam] + reaction * s - left.moment
-    return moment, reaction - left.force
+    reaction, moment = (
+        values.take(beam, axis=1, mode="clip") for values in (start.reaction, start.moment)
+    )
+    moment += reaction * s
+    moment -= left.moment
+    reaction -= left.force
+    return moment, reaction
 
 
 def _deflection(spans: SpanTable, stations: StationTable, start: _Start, left: Brackets) -> Floats:
@@ -267,13 +299,14 @@ def join_effects(first: CaseEffects, second: CaseEffects, rows: Ints) -> CaseEff
     """
     beam = np.concatenate([first.beam, second.beam])[rows]
     stretch = np.flatnonzero(np.diff(beam, prepend=-1))
-    counts = np.diff(stretch, append=beam.size)
+    place = np.repeat(np.arange(stretch.size), np.diff(stretch, append=beam.size))
 
     def joined(one: Floats, other: Floats) -> Floats:
-        effect = np.concatenate([one, other], axis=1)[:, rows]
+        effect = np.concatenate([one, other], axis=1).take(rows, axis=1, mode="clip")
         size = np.abs(effect)
-        peak = np.maximum.reduceat(size, stretch, axis=1)
-        return np.where(size > np.repeat(peak * NEGLIGIBLE, counts, axis=1), effect, 0.0)
+        limit = np.maximum.reduceat(size, stretch, axis=1) * NEGLIGIBLE
+        np.copyto(effect, 0.0, where=size <= limit.take(place, axis=1, mode="clip"))
+        return effect
 
     deflection = None
     if first.deflection is not None and second.deflection is not None:
@@ -294,7 +327,8 @@ def _load_scales(spans: SpanTable, loads: LoadTable, cases: int) -> tuple[Floats
     length = spans.length[loads.beam]
     line = (np.abs(loads.value_start) + np.abs(loads.value_end)) * (loads.end - loads.start)
     size = np.abs(loads.value_start)
-    force = np.select([loads.kind == LINE, loads.kind == MOMENT], [line, size / length], size)
+    other = np.where(loads.kind == MOMENT, size / length, size)
+    force = np.where(loads.kind == LINE, line, other)
     cell = loads.case * len(spans.start) + loads.beam
     count = cases * len(spans.start)
     summed = np.bincount(cell, weights=force, minlength=count).astype(np.float64, copy=False)
@@ -305,7 +339,8 @@ def _load_scales(spans: SpanTable, loads: LoadTable, cases: int) -> tuple[Floats
 def _without_noise(
     effect: Floats, stations: StationTable, first: Ints, load_scale: Floats
 ) -> Floats:
-    """The effect (K, N) with zero where it is negligible beside the greatest on its beam."""
+    """The effect (K, N), in place, with zero where it is negligible beside the greatest on its
+    beam."""
     if not effect.size:
         return effect
     held = np.flatnonzero(np.diff(first))
@@ -313,7 +348,9 @@ def _without_noise(
     limit = load_scale * _ROUNDING
     peak = np.maximum.reduceat(size, first[held], axis=1)
     limit[:, held] = np.maximum(limit[:, held], peak * NEGLIGIBLE)
-    return np.where(size > limit[:, stations.beam], effect, 0.0)
+    negligible = size <= limit.take(stations.beam, axis=1, mode="clip")
+    np.copyto(effect, 0.0, where=negligible)
+    return effect
 
 
 def _end_moments(spans: SpanTable, loads: LoadTable, start: _Start, totals: Brackets) -> Floats:

@@ -11,7 +11,7 @@ import numpy as np
 from ifccheck.analysis.loads import LoadTable, join_loads, load_table, self_weight_lines
 from ifccheck.analysis.spans import FREE, SpanTable, span_table
 from ifccheck.analysis.stations import SAME_PLACE, StationTable
-from ifccheck.beam import SELF, Anchor, Case
+from ifccheck.beam import SELF, Anchor, Case, Nature
 from ifccheck.mechanics.arrays import (
     ANCHOR_FULL,
     ANCHOR_HOOK,
@@ -121,6 +121,10 @@ class Frame:
     """Where nothing is checked"""
     side_loaded: Bools
     """Members frame into the side of the beam: its loads do not compress its top (B)"""
+    direct: Bools
+    """Each end stands on its support, which compresses it (B, 2)"""
+    natures: tuple[frozenset[Nature], ...]
+    """Of the loads on each beam, its own weight included (B)"""
 
 
 def frame_of(subjects: Sequence[Subject], cases: Sequence[Case]) -> Frame:
@@ -153,6 +157,16 @@ def frame_of(subjects: Sequence[Subject], cases: Sequence[Case]) -> Frame:
         checked=checked_stretch(members, spans, lengths),
         disturbed=disturbed_stretches(subjects),
         side_loaded=np.array([subject.side_loaded for subject in subjects]),
+        direct=np.array([subject.direct for subject in subjects]),
+        natures=_natures(subjects, cases),
+    )
+
+
+def _natures(subjects: Sequence[Subject], cases: Sequence[Case]) -> tuple[frozenset[Nature], ...]:
+    nature = {case.name: case.nature for case in cases}
+    return tuple(
+        frozenset({nature[SELF], *(nature[load.case] for load in subject.loads)})
+        for subject in subjects
     )
 
 
@@ -353,25 +367,25 @@ def _losses_at(beam: Ints, x: Floats, side: Ints, losses: LossTable) -> Floats:
     """Depth that openings take away at each station [mm]: of all that hold it together."""
     lost = np.zeros(x.size)
     if losses.beam.size:
-        station, row = _held(beam, x, side, losses)
+        station, row = _held(beam, x, side, losses, np.arange(losses.beam.size))
         np.add.at(lost, station, losses.height[row])
     return lost
 
 
 def _held(
-    beam: Ints, x: Floats, side: Ints, stretches: StirrupTable | LossTable
+    beam: Ints, x: Floats, side: Ints, stretches: StirrupTable | LossTable, rows: Ints
 ) -> tuple[Ints, Ints]:
-    """Every pair of a station and a stretch of its beam that holds it."""
+    """Every pair of a station and a stretch of its beam that holds it, in the order of the
+    stretches' rows."""
     order = np.argsort(beam, kind="stable")
     first, last = (
-        np.searchsorted(beam[order], stretches.beam),
-        np.searchsorted(beam[order], stretches.beam, side="right"),
+        np.searchsorted(beam[order], stretches.beam[rows], side=end) for end in ("left", "right")
     )
     lengths = last - first
     station = order[
         np.repeat(first - np.cumsum(lengths) + lengths, lengths) + np.arange(lengths.sum())
     ]
-    row = np.repeat(np.arange(stretches.beam.size), lengths)
+    row = np.repeat(rows, lengths)
     place = x[station] + 1e-6 * side[station]
     held = (place >= stretches.start[row] - 1e-9) & (place <= stretches.end[row] + 1e-9)
     return station[held], row[held]
@@ -383,11 +397,9 @@ def _stirrups_at(
     """Area, spacing and yield strength at each station: the weakest of the zones that hold it."""
     area, spacing = np.zeros(x.size), np.full(x.size, np.inf)
     strength = np.full(x.size, 400.0)
-    station, zone = _held(beam, x, side, zones)
-    ratio = zones.area[zone] / zones.spacing[zone]
-    weakest_first = np.lexsort((np.where(np.isnan(ratio), -1.0, ratio), station))
-    station, zone = station[weakest_first], zone[weakest_first]
-    chosen, row = np.unique(station, return_index=True)
-    area[chosen], spacing[chosen] = zones.area[zone[row]], zones.spacing[zone[row]]
-    strength[chosen] = zones.yield_strength[zone[row]]
+    ratio = zones.area / zones.spacing
+    strongest_first = np.argsort(np.where(np.isnan(ratio), -1.0, ratio), kind="stable")[::-1]
+    station, zone = _held(beam, x, side, zones, strongest_first)
+    area[station], spacing[station] = zones.area[zone], zones.spacing[zone]  # the last one stays
+    strength[station] = zones.yield_strength[zone]
     return area, spacing, strength

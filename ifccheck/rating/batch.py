@@ -15,7 +15,7 @@ from ifccheck.analysis.effects import (
     LEAST_SHEAR,
 )
 from ifccheck.analysis.stations import StationTable
-from ifccheck.beam import SELF, Case, Combination
+from ifccheck.beam import Case, Combination
 from ifccheck.mechanics.arrays import Bools, Demand, Floats, Ints
 from ifccheck.rating import verdict
 from ifccheck.rating.assembly import Frame, frame_of
@@ -140,15 +140,20 @@ def rate_options(
 ) -> Iterator[Batch]:
     """Rate the same beams by several options of a standard, one after the other; what those do
     not touch is worked out once."""
-    under = loaded(frame, subjects, standard, cases, combinations)
+    under = loaded(frame, standard, cases, combinations)
     prepared = standard.prepare(under.members, under.arrays, options[0])
     steady = _found(standard, prepared, under, steady=True)
     states = _states(standard, prepared, steady, under)
     factors = {
-        row: with_turns(found, Growth(under, row), standard, options[0])
+        row: with_turns(found, Growth(under, row, tuple(steady)), standard, options[0])
         for row, found in _factors(standard, steady, under).items()
     }
-    where = _places(subjects, cases, combinations, under)
+    where = verdict.Places(
+        combinations=tuple(combinations),
+        arrangements=under.effects.moment.shape[1],
+        x=under.stations.x,
+        natures=frame.natures,
+    )
     for each in options:
         prepared = standard.with_options(prepared, each)
         found = _found(standard, prepared, under, steady=False)
@@ -224,24 +229,6 @@ def _factors(
         )
         factors[row] = least_of(above, least) if above else least
     return factors
-
-
-def _places(
-    subjects: Sequence[Subject],
-    cases: Sequence[Case],
-    combinations: Sequence[Combination],
-    under: Loaded,
-) -> verdict.Places:
-    nature = {case.name: case.nature for case in cases}
-    return verdict.Places(
-        combinations=tuple(combinations),
-        arrangements=under.effects.moment.shape[1],
-        x=under.stations.x,
-        natures=tuple(
-            frozenset({nature[SELF], *(nature[load.case] for load in subject.loads)})
-            for subject in subjects
-        ),
-    )
 
 
 def _envelope(under: Loaded, peaks: dict[str, Peaks]) -> Envelope:

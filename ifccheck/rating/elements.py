@@ -43,9 +43,15 @@ class Elements:
     can_hog: Bools
     """For every multiple of a rated case, as in a Demand (E)"""
 
-    def demand(self, rows: Ints | slice) -> Demand:
-        """What acts at some of the elements."""
+    def demand(self, rows: slice) -> Demand:
+        """What acts at a stretch of the elements."""
         return demand_of(self.total[:, rows], self.can_sag[rows], self.can_hog[rows])
+
+    def first(self) -> Demand:
+        """What acts at the first element of each station (N)."""
+        rows = self.first_of_station
+        total = self.total.take(rows, axis=1, mode="clip")
+        return demand_of(total, self.can_sag[rows], self.can_hog[rows])
 
 
 def stretches(size: int) -> Iterator[slice]:

@@ -11,7 +11,7 @@ from ifccheck.analysis.combinations import factor_array
 from ifccheck.analysis.effects import Demands, Effects, combine, demands, turning_places
 from ifccheck.analysis.loads import LINE
 from ifccheck.analysis.spans import FREE
-from ifccheck.analysis.statics import CaseEffects, case_effects, join_effects
+from ifccheck.analysis.statics import Solved, effects_at, join_effects, solve
 from ifccheck.analysis.stations import (
     Places,
     StationTable,
@@ -25,7 +25,6 @@ from ifccheck.beam import Case, Combination
 from ifccheck.mechanics.arrays import Bools, Floats, Members, Stations
 from ifccheck.rating.assembly import Frame, make_station_arrays, within
 from ifccheck.rating.elements import Elements, ask_nothing, distinct_elements
-from ifccheck.rating.subject import Subject
 from ifccheck.standards import Standard
 
 
@@ -34,6 +33,7 @@ class Loaded:
     """Beams (B) under their loads, at every station (N)."""
 
     frame: Frame
+    solved: Solved
     stations: StationTable
     members: Members
     """With a section for every station in a taper"""
@@ -49,7 +49,6 @@ class Loaded:
 
 def loaded(
     frame: Frame,
-    subjects: Sequence[Subject],
     standard: Standard,
     cases: Sequence[Case],
     combinations: Sequence[Combination],
@@ -58,7 +57,7 @@ def loaded(
 
     Parameters
     ----------
-    frame, subjects
+    frame
         At least one beam (B).
     standard
         Tells where shear is critical.
@@ -68,8 +67,9 @@ def loaded(
         Strength combinations, exclusions already worked out.
     """
     factors = factor_array(combinations, cases)
-    critical = _critical_sections(subjects, frame, standard)
-    effects, stations = _effects(frame, critical, factors)
+    critical = _critical_sections(frame, standard)
+    solved = solve(frame.spans, frame.loads, len(cases))
+    effects, stations = _effects(frame, solved, critical, factors)
     acting = demands(
         effects,
         critical_rows(stations, critical[:, 0], critical[:, 1]),
@@ -80,17 +80,17 @@ def loaded(
     disturbed = frame.disturbed.hold(stations.beam, stations.x)
     elements = distinct_elements(effects, acting, stations.beam)
     ask_nothing(elements, disturbed)
-    return Loaded(frame, stations, *arrays, effects, factors, acting, elements, disturbed)
+    return Loaded(frame, solved, stations, *arrays, effects, factors, acting, elements, disturbed)
 
 
-def _critical_sections(subjects: Sequence[Subject], frame: Frame, standard: Standard) -> Floats:
+def _critical_sections(frame: Frame, standard: Standard) -> Floats:
     """x of the critical section for shear at either end of each beam [mm] (B, 2).
 
     nan where nearer stations must be checked with their own shear: a free end, an end whose
     reaction does not compress it, or a concentrated load or an opening between the face and that
     section.
     """
-    beams = len(subjects)
+    beams = len(frame.faces)
     beam = np.repeat(np.arange(beams), 2)
     side = np.tile([1, -1], beams)
     at_faces = make_station_arrays(frame, beam, frame.faces.ravel(), side)
@@ -101,11 +101,11 @@ def _critical_sections(subjects: Sequence[Subject], frame: Frame, standard: Stan
         distance = np.minimum(distance, standard.critical_distance(*there))
     distance = distance.reshape(beams, 2)
     critical = frame.faces + distance * np.array([1.0, -1.0])
-    direct = np.array([subject.direct for subject in subjects])
     held = np.stack([frame.spans.start_kind, frame.spans.end_kind], axis=-1) != FREE
     middle = frame.faces.mean(axis=1, keepdims=True)
     short = (critical - middle) * np.array([1.0, -1.0]) > 0.0
-    usable = direct & held & ~short & ~_concentrated(frame, critical) & ~_opened(frame, critical)
+    usable = frame.direct & held & ~short
+    usable &= ~_concentrated(frame, critical) & ~_opened(frame, critical)
     return np.where(usable, critical, np.nan)
 
 
@@ -140,19 +140,17 @@ def _opened(frame: Frame, critical: Floats) -> Bools:
     return found
 
 
-def _effects(frame: Frame, critical: Floats, factors: Floats) -> tuple[Effects, StationTable]:
+def _effects(
+    frame: Frame, solved: Solved, critical: Floats, factors: Floats
+) -> tuple[Effects, StationTable]:
     """Effects at stations that include every place where a greatest moment turns."""
     fixed = join_places(*_fixed_places(frame, critical))
     stations = within(make_stations(frame.spans, frame.loads, fixed), frame.checked)
-
-    def at(where: StationTable) -> CaseEffects:
-        return case_effects(frame.spans, frame.loads, where, factors.shape[1], deflections=False)
-
-    found = at(stations)
-    beam, x = turning_places(found, factors)
-    turns = StationTable(beam, x, np.zeros_like(beam))
+    found = effects_at(solved, stations, deflections=False)
+    beam, x = turning_places(found, factors).places()
+    there = effects_at(solved, StationTable(beam, x, np.zeros_like(beam)), deflections=False)
     stations, rows = insert_stations(stations, beam, x)
-    return combine(join_effects(found, at(turns), rows), factors), stations
+    return combine(join_effects(found, there, rows), factors), stations
 
 
 def _fixed_places(frame: Frame, critical: Floats) -> list[Places]:

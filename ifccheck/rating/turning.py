@@ -6,20 +6,21 @@ case they turn elsewhere, between stations, and a little higher than at those.
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from dataclasses import dataclass, replace
 from typing import TypeVar
 
 import numpy as np
 
-from ifccheck.analysis.effects import combine, demands, turning_places
-from ifccheck.analysis.statics import case_effects
+from ifccheck.analysis.effects import Turns, combine, demands, turning_places
+from ifccheck.analysis.statics import effects_at
 from ifccheck.analysis.stations import StationTable, rows_before
-from ifccheck.mechanics.arrays import Bools, Floats, Ints
+from ifccheck.mechanics.arrays import Bools, Demand, Floats, Ints
 from ifccheck.rating.assembly import make_station_arrays
 from ifccheck.rating.elements import distinct_elements
 from ifccheck.rating.factors import Factors, rating_factors
 from ifccheck.rating.loaded import Loaded
-from ifccheck.rating.utilisation import evaluate
+from ifccheck.rating.utilisation import Found, evaluate
 from ifccheck.standards import Options, Standard
 
 Values = TypeVar("Values", Floats, Ints)
@@ -30,6 +31,10 @@ SETTLED = 1e-8
 MOST_ROUNDS = 6
 
 
+CRITICAL = 0.98
+"""Utilisation by the resistances beside it above which a place where a moment turns is looked at"""
+
+
 @dataclass(frozen=True, slots=True)
 class Growth:
     """A rated case that may be multiplied."""
@@ -37,36 +42,53 @@ class Growth:
     under: Loaded
     case: int
     """Row of the rated case"""
+    found: tuple[Found, ...]
+    """The limit states whose resistance does not depend on the loads"""
 
 
-def with_turns(found: Factors, growth: Growth, standard: Standard, options: Options) -> Factors:
+def with_turns(factors: Factors, growth: Growth, standard: Standard, options: Options) -> Factors:
     """Factors that hold at the places where moments turn under those factors, too.
 
-    Only limit states that are linear in the loads are looked at there: what depends on moment
-    and shear together is never worst where the shear is nothing.
+    Only limit states whose resistance does not depend on the loads are looked at there: what
+    depends on moment and shear together is never worst where the shear is nothing.
     """
-    moving = np.isfinite(found.factor) & (found.factor > 0.0)
+    moving = np.isfinite(factors.factor) & (factors.factor > 0.0)
     for _ in range(MOST_ROUNDS):
-        beam, x = _turns(found.factor, moving, growth)
+        beam, x = _turns(factors.factor, moving, growth)
         rated = ~growth.under.frame.disturbed.hold(beam, x)
         beam, x = beam[rated], x[rated]
         if not beam.size:
-            return found
-        lower = _factors_at(beam, x, found, growth, standard, options)
-        moving = lower.factor < found.factor * (1.0 - SETTLED)
-        found = lower
-    return found
+            return factors
+        lower = _factors_at(beam, x, factors, growth, standard, options)
+        moving = lower.factor < factors.factor * (1.0 - SETTLED)
+        factors = lower
+    return factors
 
 
 def _turns(factor: Floats, moving: Bools, growth: Growth) -> tuple[Ints, Floats]:
-    """Where the moments of the moving beams turn with the case multiplied."""
-    cases = growth.under.effects.cases
-    rows = np.flatnonzero(moving[cases.beam])
-    beam, moment, shear = cases.beam[rows], cases.moment[:, rows], cases.shear[:, rows]
-    moment[growth.case] *= factor[beam]
-    shear[growth.case] *= factor[beam]
-    grown = replace(cases, beam=beam, x=cases.x[rows], moment=moment, shear=shear, deflection=None)
-    return turning_places(grown, growth.under.factors, alone=False)
+    """Where the moments of the moving beams turn with the case multiplied, and may be critical."""
+    cases, factors = growth.under.effects.cases, growth.under.factors
+    multiple = np.where(moving, factor, 0.0)[cases.beam]
+    moment, shear = cases.moment.copy(), cases.shear.copy()
+    moment[growth.case] *= multiple
+    shear[growth.case] *= multiple
+    turns = turning_places(replace(cases, moment=moment, shear=shear), factors, alone=False)
+    turns = turns.take(moving[turns.beam])
+    return turns.take(_critical(turns, growth.found)).places()
+
+
+def _critical(turns: Turns, found: Sequence[Found]) -> Bools:
+    """Whether a moment comes near the lesser of the resistances at the stations beside it, which
+    is about the least between them."""
+    nothing, never = np.zeros(turns.x.shape), np.zeros(turns.x.shape, dtype=np.bool_)
+    acting = Demand(turns.moment, nothing, nothing, nothing, nothing, never, never)
+    critical = never
+    for one in found:
+        if one.quick.demanded is not None:
+            for demand, peaks in zip(one.quick.demanded(acting), one.peaks, strict=True):
+                beside = np.minimum(peaks.resistance[turns.row], peaks.resistance[turns.row + 1])
+                critical = critical | ((demand > 0.0) & ~(demand < CRITICAL * beside))
+    return critical
 
 
 def _factors_at(
@@ -80,9 +102,7 @@ def _factors_at(
     """The factors, lowered to what holds at some more places."""
     under, side = growth.under, np.zeros_like(beam)
     frame, stations = under.frame, StationTable(beam, x, side)
-    cases = case_effects(
-        frame.spans, frame.loads, stations, under.factors.shape[1], deflections=False
-    )
+    cases = effects_at(under.solved, stations, deflections=False)
     effects = combine(cases, under.factors)
     acting = demands(effects, np.arange(x.size), (growth.case,))
     arrays = make_station_arrays(frame, beam, x, side)
@@ -90,9 +110,9 @@ def _factors_at(
     elements = distinct_elements(effects, acting, row)
     prepared = standard.prepare(*arrays, options)
     there = [
-        evaluate(quick, quick.basis(prepared), elements)
-        for quick in standard.quick
-        if quick.demanded is not None
+        evaluate(one.quick, one.quick.basis(prepared), elements)
+        for one in growth.found
+        if one.quick.demanded is not None
     ]
     lower = rating_factors(
         standard.limit_states, there, elements, elements.shares[0], x, found.factor[beams]

@@ -52,7 +52,7 @@ def evaluate(quick: Quick, basis: Any, elements: Elements) -> Found:
     station needs it but once."""
     if quick.loaded and quick.demanded is None:
         return Found(quick, basis, _peaks_of_elements(quick, basis, elements))
-    evaluated = quick.evaluate(basis, elements.demand(elements.first_of_station))
+    evaluated = quick.evaluate(basis, elements.first())
     if quick.demanded is None:
         return Found(quick, basis, tuple(_peaks(*known) for known in evaluated))
     demands = quick.demanded(elements.demand(slice(None)))

@@ -94,17 +94,14 @@ class Web:
     """Beyond the faces of the supports"""
     special: Bools
     """Something of the rest must be looked at whatever acts"""
+    doubtful: bool
+    """Any is special"""
     rest: Seldom
     station: Ints | None = None
     """Row of the rest for each station (N); the station itself where None"""
     chord_rates: Floats | None = None
     """Shear that the upper and the lower chord put on the web for each unit of moment, by their
     inclination [1/mm] (N, 2); None where no chord is inclined"""
-
-    @property
-    def doubtful(self) -> bool:
-        """Whether something of what is seldom needed must be looked at"""
-        return bool(self.special.any())
 
     def rows(self, places: Ints | slice = slice(None)) -> Ints | slice:
         """Rows of ``rest`` of the given stations."""
@@ -139,7 +136,7 @@ def _web(
     depth, area, plain, gain, stirrups, counting, greatest, steel, lever = table
     return Web(
         top, simplified, table, depth, area, plain, gain, stirrups, counting, greatest, steel,
-        lever, outside, special, rest, station, chord_rates,
+        lever, outside, special, bool(special.any()), rest, station, chord_rates,
     )  # fmt: skip
 
 
