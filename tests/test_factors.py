@@ -165,5 +165,5 @@ def _named(beam: Subject, key: str) -> Subject:
     return replace(
         beam,
         beam=replace(beam.beam, key=key),
-        loads=tuple(replace(load, beam=key) for load in beam.loads),
+        loads=tuple(load._replace(beam=key) for load in beam.loads),
     )
