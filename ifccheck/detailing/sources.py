@@ -32,6 +32,8 @@ def choose_source(beam: Beam, order: Sequence[SourceName]) -> Chosen:
         remarks = tuple(remark for r in found for remark in r.remarks)
         return Chosen(None, remarks, reasons or (Reason(_nothing(beam)),))
     taken, others = speaking[0], speaking[1:]
+    if len(found) == 1:
+        return Chosen(taken, taken.remarks, taken.reasons)
     unread = [
         Remark(beam.key, STAGE, f"{r.source}: {reason.text}; {taken.source} used instead", "doubt")
         for r in found

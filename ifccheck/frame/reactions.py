@@ -23,12 +23,13 @@ def unknown_reactions(
     unmeasured: Sequence[Unmeasured],
 ) -> list[Reason]:
     """Why a beam is not rated whose loads are not stated to be complete; empty where it is."""
+    span = standing.span
     resting = between_reactions(
         contacts,
         beam.length,
         standing.bearings,
-        free_start=standing.span.start_support.kind == "free",
-        free_end=standing.span.end_support.kind == "free",
+        free_start=span.start_support.kind == "free",
+        free_end=span.end_support.kind == "free",
     )
     reasons = reactions_reason(resting), unmeasured_reason(beam, unmeasured)
     return [reason for reason in reasons if reason]
@@ -71,20 +72,17 @@ def _resting(
     tips: Set[str],
 ) -> tuple[Contact, ...]:
     """Those sought that may bring a reaction, among all contacts of a beam."""
-    doubtful = [c for c in sought if not _only_holds(c, tips) and _may_rest(c)]
+    # Under a held end, or against its face, a contact only holds it.
+    doubtful = [
+        c
+        for c in sought
+        if (c.place == "between" or c.side not in ("below", "end") or c.place in tips)
+        and _may_rest(c)
+    ]
     if not doubtful:
         return ()
     held = _held_stretches(contacts, length, bearings)
     return tuple(c for c in doubtful if _loads_span(c, tips, held, length))
-
-
-def _only_holds(contact: Contact, tips: Set[str]) -> bool:
-    """Whether it is at an end that is held, under the beam or against its face."""
-    return (
-        contact.side in ("below", "end")
-        and contact.place != "between"
-        and contact.place not in tips
-    )
 
 
 def loaded_from_side(

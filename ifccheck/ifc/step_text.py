@@ -17,6 +17,8 @@ def step_string(text: str) -> str:
     >>> print(step_string("Ø16"))
     '\X2\00D8\X0\16'
     """
+    if text.isascii() and text.isprintable() and "'" not in text and "\\" not in text:
+        return f"'{text}'"
     return f"'{_SPECIAL.sub(_escape, text)}'"
 
 

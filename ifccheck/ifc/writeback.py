@@ -6,7 +6,7 @@ import math
 from collections import Counter
 from collections.abc import Callable, Iterable, Iterator, Mapping, Sequence, Set
 from itertools import chain
-from operator import attrgetter
+from operator import itemgetter
 from typing import Any
 
 import numpy as np
@@ -157,9 +157,10 @@ def _require_sound(
         if result.name not in RESULT_SET_NAMES:
             raise ValueError(f"{result.name} is not a result set")
         names = tuple(map(_name_of, result.properties))
-        if names not in sound and len(set(names)) < len(names):
-            raise ValueError(f"{result.name} of {result.guid} gives a property twice")
-        sound.add(names)
+        if names not in sound:
+            if len(set(names)) < len(names):
+                raise ValueError(f"{result.name} of {result.guid} gives a property twice")
+            sound.add(names)
     for item in distinct:
         _require_short(item)
     for step_id, guid in {result.step_id: result.guid for result in sets}.items():
@@ -167,7 +168,7 @@ def _require_sound(
             raise ValueError(f"#{step_id} is not the beam {guid}")
 
 
-_name_of = attrgetter("name")
+_name_of: Callable[[ResultProperty], str] = itemgetter(0)
 
 
 def _guid_at(file: Any, step_id: int) -> str | None:
