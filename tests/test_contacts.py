@@ -408,17 +408,21 @@ def extreme(a: tuple[np.ndarray, ...], b: tuple[np.ndarray, ...], way: np.ndarra
     st.lists(unit, min_size=9, max_size=9),
     st.tuples(unit, unit, unit),
     st.tuples(*[st.floats(0.05, 1.0)] * 6),
-    st.booleans(),
+    st.permutations(range(3)),
+    st.tuples(*[st.sampled_from([-1.0, 1.0])] * 3),
+    st.sampled_from(["askew", "square", "upright"]),
 )
 def test_overlaps_agree_with_a_linear_program(
     first: list[float],
     second: list[float],
     offset: tuple[float, float, float],
     halves: tuple[float, ...],
-    upright: bool,
+    order: list[int],
+    signs: tuple[float, float, float],
+    how: str,
 ) -> None:
-    axes = orthonormal(first)
-    other_axes = axes if upright else orthonormal(second)
+    axes = np.eye(3) if how == "upright" else orthonormal(first)
+    other_axes = orthonormal(second) if how == "askew" else axes[order] * np.array(signs)[:, None]
     a = (np.array([0.3, -0.2, 0.1]), axes, np.array(halves[:3]))
     b = (a[0] + 1.5 * np.array(offset), other_axes, np.array(halves[3:]))
     ours = overlaps(*(Boxes(*(part[None] for part in box)) for box in (a, b)))[0]

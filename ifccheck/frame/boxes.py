@@ -23,6 +23,9 @@ _EDGES = np.array([[a, a | bit] for bit in (1, 2, 4) for a in range(8) if not a 
 
 _PARALLEL = 1e-12
 
+_SQUARE = 1e-15
+"""Sine of the angle between axes that are the same but for the rounding of numbers"""
+
 _BLOCK = 1024
 """Pairs of boxes worked out together: so many stay in the processor's own memory"""
 
@@ -150,29 +153,40 @@ def _turn(a: Boxes, b: Boxes) -> Floats:
 def overlaps(a: Boxes, b: Boxes) -> Floats:
     """What the common part of each pair of boxes covers along the axes of the first.
 
-    The corners of the common part of two convex bodies lie on the edges of one within the
-    other, so that the edges of each, cut by the other, give its extent.
-
     Returns
     -------
     array
         Least and greatest place along x, y and z of the first box, from its centre [mm]
         (P, 3, 2); nan where the two do not meet.
     """
-    # The axes come first in every array from here on: numpy is slow along short last axes.
-    turn = np.ascontiguousarray(_turn(a, b).transpose(1, 2, 0))
-    offset = np.ascontiguousarray(np.einsum("pkd,pd->kp", a.axes, b.centre - a.centre))
-    half_a, half_b = np.ascontiguousarray(a.half.T), np.ascontiguousarray(b.half.T)
-    covered = np.empty((len(a.half), 3, 2))
-    for first in range(0, len(a.half), _BLOCK):
-        block = slice(first, first + _BLOCK)
-        covered[block] = _common_extent(
-            half_a[:, block], half_b[:, block], turn[..., block], offset[:, block]
-        )
+    turn, offset = _turn(a, b), np.einsum("pkd,pd->pk", a.axes, b.centre - a.centre)
+    size: Floats = np.abs(turn)
+    square = ((size <= _SQUARE) | (size >= 1.0 - _SQUARE)).all(axis=(1, 2))
+    covered = _square_overlaps(a.half, b.half, np.asarray(size.round(), np.float64), offset)
+    askew = np.flatnonzero(~square)
+    for first in range(0, askew.size, _BLOCK):
+        rows = askew[first : first + _BLOCK]
+        covered[rows] = _askew_overlaps(a.half[rows], b.half[rows], turn[rows], offset[rows])
     return covered
 
 
-def _common_extent(half_a: Floats, half_b: Floats, turn: Floats, offset: Floats) -> Floats:
+def _square_overlaps(half_a: Floats, half_b: Floats, along: Floats, offset: Floats) -> Floats:
+    """The common parts of boxes of which every axis of one is along one of the other."""
+    reach = np.einsum("pj,pkj->pk", half_b, along)
+    low, high = np.maximum(-half_a, offset - reach), np.minimum(half_a, offset + reach)
+    meet = (low <= high).all(axis=1)
+    return np.where(meet[:, None, None], np.stack([low, high], axis=-1), np.nan)
+
+
+def _askew_overlaps(half_a: Floats, half_b: Floats, turn: Floats, offset: Floats) -> Floats:
+    """The common parts of boxes that stand at any angle to each other.
+
+    The corners of the common part of two convex bodies lie on the edges of one within the
+    other, so that the edges of each, cut by the other, give its extent.
+    """
+    # The axes come first in every array from here on: numpy is slow along short last axes.
+    turn, offset = np.ascontiguousarray(turn.transpose(1, 2, 0)), np.ascontiguousarray(offset.T)
+    half_a, half_b = np.ascontiguousarray(half_a.T), np.ascontiguousarray(half_b.T)
     signs = _SIGNS.T[:, :, None]
     corners_b = _from_second(signs * half_b[:, None, :], turn, offset)
     corners_a = _turned(signs * half_a[:, None, :] - offset[:, None, :], turn.swapaxes(0, 1))

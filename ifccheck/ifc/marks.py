@@ -32,7 +32,8 @@ def with_block(source: bytes, scan: Scan, sha256: str, lines: Sequence[str]) -> 
     begin = _BEGIN.format(how=how, sha256=sha256)
     lead = b"" if scan.on_own_line else scan.newline
     block = scan.newline.decode().join((begin, *lines, _END, "")).encode("ascii")
-    return b"".join((source[: scan.insertion], lead, block, source[scan.insertion :]))
+    whole = memoryview(source)
+    return b"".join((whole[: scan.insertion], lead, block, whole[scan.insertion :]))
 
 
 def without_intact_block(data: bytes, scan: Scan) -> bytes | None:
