@@ -149,7 +149,7 @@ class ModelWithBars:
         run = Run(0.0, length, Outline((tuple(ring),)))
         self._places[beam.id()] = placement
         if host:
-            self.frames[beam.id()] = BeamFrame(axis, (run,))
+            self.frames[beam.id()] = BeamFrame(beam.GlobalId, axis, (run,))
         return beam
 
     def curve(self, curve: Curve) -> Any:

@@ -546,7 +546,7 @@ def test_thirty_four_stirrups_of_an_open_model(open_models: object) -> None:
     (beam,) = file.by_type("IfcBeam")
     axis = Axis((0.0, 0.0, -400.0), (0.0, 1.0, 0.0), (-1.0, 0.0, 0.0), (0.0, 0.0, 1.0), 5000.0)
     ring = ((-100.0, 0.0), (100.0, 0.0), (100.0, 400.0), (-100.0, 400.0))
-    frame = BeamFrame(axis, (Run(0.0, 5000.0, Outline((ring,))),))
+    frame = BeamFrame("", axis, (Run(0.0, 5000.0, Outline((ring,))),))
     context = make_context(file, "IFC4X3")
     (bars,) = read_reinforcement(context, {beam.id(): frame}, {})[beam.id()]
     (zone,) = bars.stirrups

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Iterable, Sequence
+from collections.abc import Iterable, Sequence
 
 from ifccheck.beam import Reason, Remark, RemarkKind
 
@@ -14,8 +14,8 @@ LISTED = 3
 class Findings:
     """Remarks and reasons on beams, each with the bars that it is about."""
 
-    def __init__(self, key: Callable[[int], str]) -> None:
-        self._key = key
+    def __init__(self, guids: Sequence[str]) -> None:
+        self._guids = guids
         self._remarks: dict[int, dict[tuple[str, RemarkKind], list[str]]] = {}
         self._reasons: dict[int, dict[tuple[str, bool], list[str]]] = {}
 
@@ -35,15 +35,19 @@ class Findings:
 
     def remarks(self, beam: int) -> tuple[Remark, ...]:
         """The remarks on a beam."""
-        said = self._remarks.get(beam, {})
+        said = self._remarks.get(beam)
+        if not said:
+            return ()
+        guid = self._guids[beam]
         return tuple(
-            Remark(self._key(beam), STAGE, _sentence(bars, text), kind)
-            for (text, kind), bars in said.items()
+            Remark(guid, STAGE, _sentence(bars, text), kind) for (text, kind), bars in said.items()
         )
 
     def reasons(self, beam: int) -> tuple[Reason, ...]:
         """The reasons why a beam is not rated."""
-        said = self._reasons.get(beam, {})
+        said = self._reasons.get(beam)
+        if not said:
+            return ()
         return tuple(
             Reason(_sentence(bars, text), blocking) for (text, blocking), bars in said.items()
         )

@@ -34,6 +34,7 @@ class Context:
 class BeamFrame:
     """A beam as its reinforcement is measured in it."""
 
+    guid: str
     axis: Axis
     runs: tuple[Run, ...]
 

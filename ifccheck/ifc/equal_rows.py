@@ -85,11 +85,14 @@ def of_like_width(width: Ints) -> Iterable[tuple[Ints, int]]:
 
 def _as_words(data: Bytes, start: Ints, width: Ints, words: int) -> Words:
     """Texts as words, nothing after their ends, and their width beside them."""
-    columns = [
-        text & _LOW_BYTES[np.clip(width - place * WORD, 0, WORD)]
-        for place, text in enumerate(words_at(data, start, words))
-    ]
-    return np.stack((*columns, width.astype(np.uint64)), axis=1).view(np.int64)
+    found = np.empty((len(start), words + 1), dtype=np.uint64)
+    least = int(width.min())
+    for place, text in enumerate(words_at(data, start, words)):
+        if least < (place + 1) * WORD:
+            text &= _LOW_BYTES[np.clip(width - place * WORD, 0, WORD)]
+        found[:, place] = text
+    found[:, words] = width
+    return found.view(np.int64)
 
 
 def renumbered(number: Ints, count: int) -> tuple[Ints, Ints]:

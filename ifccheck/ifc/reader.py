@@ -136,7 +136,9 @@ def _reinforced(
 ) -> Iterator[Beam]:
     """The beams with the reinforcement that the model holds for those whose body is read."""
     frames = {
-        beam.step_id: BeamFrame(beam.axis, beam.runs) for beam in beams if beam.axis is not None
+        beam.step_id: BeamFrame(beam.guid, beam.axis, beam.runs)
+        for beam in beams
+        if beam.axis is not None
     }
     found = read_reinforcement(context, frames, mapping, statements)
     for beam in beams:

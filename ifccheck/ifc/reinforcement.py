@@ -66,7 +66,7 @@ def _physical(
     if not hosts:
         return {}, {}
     frames = make_frames(hosts)
-    findings = Findings(lambda beam: str(context.file.by_id(frames.ids[beam])[0]))
+    findings = Findings([frame.guid for frame in hosts.values()])
     finder = Hosts(context.file, context.relations, hosts)
     _tell_meshes(context, finder, frames, findings)
     bars, ties = _tied_bars(context, finder, statements)

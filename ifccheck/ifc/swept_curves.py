@@ -42,6 +42,10 @@ class Lines:
     pieces: Floats
     """How many pieces each has: its last parameter, as the standard counts."""
 
+    def numbered(self, curves: Ints) -> Lines:
+        """The same where some of several curves were asked for."""
+        return Lines(curves[self.place], self.paths, self.pieces)
+
     def with_more(self, more: Lines) -> Lines:
         """These lines and more behind them."""
         if not len(more.place):

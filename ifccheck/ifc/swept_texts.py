@@ -8,7 +8,7 @@ import numpy as np
 
 from ifccheck.ifc.bar_courses import PARAMETER_TOLERANCE
 from ifccheck.ifc.bar_paths import Bools, Floats, Ints, arc_frames
-from ifccheck.ifc.bar_samples import PathTable
+from ifccheck.ifc.bar_samples import PathTable, others
 from ifccheck.ifc.bar_shapes import FARTHEST
 from ifccheck.ifc.many_vectors import sizes
 from ifccheck.ifc.step_table import StepTable
@@ -46,7 +46,9 @@ def read_swept_texts(table: StepTable, solids: Ints, scale: float) -> SweptSolid
     that are swept over a part of their curve, or whose curves are of another kind, are left out.
     """
     asked = _solids(table, solids)
-    lines = indexed_curves(table, asked.curve).with_more(polylines(table, asked.curve))
+    lines = indexed_curves(table, asked.curve)
+    left = others(len(asked.curve), lines.place)
+    lines = lines.with_more(polylines(table, asked.curve[left]).numbered(left))
     whole = _whole(lines, asked.start[lines.place], asked.end[lines.place])
     row = lines.place[whole]
     paths = lines.paths if whole.all() else lines.paths.take(np.flatnonzero(whole))
