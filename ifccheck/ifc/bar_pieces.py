@@ -65,16 +65,30 @@ class CentreLines:
         return np.maximum.reduceat(self.points, self.first[:-1], axis=0)
 
 
-def place(
-    samples: Samples, path: Ints, rotation: Floats, translation: Floats, diameter: Floats
-) -> CentreLines:
-    """Place sampled paths: one row per bar, with its path (R), rotation (R, 3, 3) and
-    translation (R, 3)."""
-    counts = samples.first[path + 1] - samples.first[path]
+@dataclass(frozen=True, slots=True)
+class Turned:
+    """Lines turned into the axes of beams, not yet moved (L)."""
+
+    points: Floats
+    arc: Bools
+    first: Ints
+
+    def placed(self, number: Ints, translation: Floats, diameter: Floats) -> CentreLines:
+        """Bars that have these lines, each moved by its translation (R, 3)."""
+        counts = np.diff(self.first)[number]
+        row, within = spread(counts)
+        source = self.first[number][row] + within
+        points = self.points[source] + translation[row]
+        return CentreLines(points, self.arc[source], row, offsets(counts), diameter)
+
+
+def turned(samples: Samples, line: Ints, rotation: Floats) -> Turned:
+    """Turn sampled lines, each by its rotation (L, 3, 3)."""
+    counts = np.diff(samples.first)[line]
     row, within = spread(counts)
-    source = samples.first[path][row] + within
-    points = np.einsum("nij,nj->ni", rotation[row], samples.points[source]) + translation[row]
-    return CentreLines(points, samples.arc[source], row, offsets(counts), diameter)
+    source = samples.first[line][row] + within
+    points = np.einsum("nij,nj->ni", rotation[row], samples.points[source])
+    return Turned(points, samples.arc[source], offsets(counts))
 
 
 @dataclass(frozen=True, slots=True)

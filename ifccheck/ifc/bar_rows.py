@@ -8,7 +8,7 @@ import numpy as np
 import numpy.typing as npt
 
 from ifccheck.ifc.bar_paths import Bools, Floats, Ints
-from ifccheck.ifc.bar_pieces import CentreLines, place
+from ifccheck.ifc.bar_pieces import CentreLines, turned
 from ifccheck.ifc.bar_samples import Samples, sample
 from ifccheck.ifc.bar_table import BarTable
 from ifccheck.ifc.beam_frames import BeamFrames
@@ -57,11 +57,6 @@ class BarPlaces:
         """What people call the bar of a strand."""
         return self.table.label(int(self.table.bar[strand]))
 
-    def motions(self, rows: Rows) -> tuple[Floats, Floats]:
-        """Rotations (R, 3, 3) and translations (R, 3) of strands into the axes of their beams."""
-        turn, rotations = self._turns(rows)
-        return rotations[turn], self._translations(rows)
-
     def _turns(self, rows: Rows) -> tuple[Ints, Floats]:
         """Which rotation each strand has in the axes of its beam, and those rotations."""
         turn, rotations = self.table.turn[rows.strand], self.table.rotations
@@ -75,8 +70,11 @@ class BarPlaces:
 
     def centre_lines(self, rows: Rows) -> CentreLines:
         """The centre lines of strands in the axes of their beams."""
-        path, diameter = self.table.path[rows.strand], self.diameter[rows.strand]
-        return place(self.samples, path, *self.motions(rows), diameter)
+        turn, rotations = self._turns(rows)
+        _, same = first_of_each(*rotations.reshape(-1, 9).T.view(np.int64))
+        shape, number = first_of_each_number(self._lines(rows.strand) * len(same) + same[turn])
+        shapes = turned(self.samples, self._lines(rows.strand[shape]), rotations[turn[shape]])
+        return shapes.placed(number, self._translations(rows), self.diameter[rows.strand])
 
     def alike(self, rows: Rows) -> tuple[Ints, Floats]:
         """Find strands that differ by their place along a prismatic beam alone.
@@ -85,29 +83,26 @@ class BarPlaces:
         """
         turn, rotations = self._turns(rows)
         translation = self._translations(rows)
-        _, rotation = first_of_each(_in_steps(*(rotations.reshape(-1, 9).T * ROTATION_STEPS)))
+        _, rotation = first_of_each(*_in_steps(rotations.reshape(-1, 9).T * ROTATION_STEPS))
         prismatic = self.frames.prismatic()[rows.beam]
         own = np.where(prismatic, -1, np.arange(len(rows.beam)))
-        place = _in_steps(
-            *(translation[:, 1:].T * PLACE_STEPS), self.diameter[rows.strand] * PLACE_STEPS
-        )
+        place = _in_steps(translation[:, 1:].T * PLACE_STEPS)
+        thick = _in_steps(self.diameter[rows.strand] * PLACE_STEPS)
         path = self.table.path[rows.strand]
-        key = np.column_stack((rows.beam, own, path, rotation[turn], place))
-        first, inverse = first_of_each(key)
+        first, inverse = first_of_each(rows.beam, own, path, rotation[turn], *place, thick)
         stands_for = first[inverse]
         return stands_for, translation[:, 0] - translation[stands_for, 0]
 
     def world_lines(self, strands: Ints) -> CentreLines:
         """The centre lines of strands in the building."""
-        return place(
-            self.samples,
-            self.table.path[strands],
-            self.table.rotation[strands],
-            self.table.translation[strands],
-            self.diameter[strands],
-        )
+        shapes = turned(self.samples, self._lines(strands), self.table.rotation[strands])
+        translation = self.table.translation[strands]
+        return shapes.placed(np.arange(len(strands)), translation, self.diameter[strands])
+
+    def _lines(self, strands: Ints) -> Ints:
+        """Which line the centre line of each strand is."""
+        return self.table.paths.line[self.table.path[strands]]
 
 
-def _in_steps(*columns: Floats) -> npt.NDArray[np.int64]:
-    """Columns rounded to whole numbers, side by side."""
-    return np.column_stack([np.rint(column).astype(np.int64) for column in columns])
+def _in_steps(values: Floats) -> npt.NDArray[np.int64]:
+    return np.rint(values).astype(np.int64)

@@ -16,36 +16,34 @@ CHORD_ANGLE = math.pi / 7.0
 
 @dataclass(frozen=True, slots=True)
 class PathTable:
-    """Many centre lines (n), the points of one after those of another (N)."""
+    """Many centre lines (n), of which some are the same line (m); the points of one line after
+    those of another (N)."""
 
     points: Floats
     """(N, 3) [mm]"""
     first: Ints
-    """Index of the first point of each line, and N at the end (n + 1)."""
+    """Index of the first point of each line, and N at the end (m + 1)."""
     arcs: Ints
     """Indices of points at which an arc runs through three points."""
+    line: Ints
+    """Which line each centre line is (n)."""
 
     def __len__(self) -> int:
-        """How many lines."""
-        return len(self.first) - 1
+        """How many centre lines."""
+        return len(self.line)
 
-    def take(self, kept: Ints) -> PathTable:
-        """Some of the lines, in their order."""
-        counts = np.diff(self.first)
-        line = np.repeat(np.arange(len(counts)), counts)
-        held = np.zeros(len(counts), dtype=bool)
-        held[kept] = True
-        index = np.cumsum(held[line]) - 1
-        arcs = self.arcs[held[line[self.arcs]]]
-        return PathTable(self.points[held[line]], offsets(counts[kept]), index[arcs])
+    def take(self, kept: Ints | Bools) -> PathTable:
+        """Some of the centre lines."""
+        return PathTable(self.points, self.first, self.arcs, self.line[kept])
 
     def with_more(self, more: PathTable) -> PathTable:
-        """Return these lines and more behind them."""
+        """Return these centre lines and more behind them."""
         offset = len(self.points)
         return PathTable(
             np.concatenate((self.points, more.points)),
             np.concatenate((self.first, more.first[1:] + offset)),
             np.concatenate((self.arcs, more.arcs + offset)),
+            np.concatenate((self.line, more.line + len(self.first) - 1)),
         )
 
 
@@ -58,7 +56,8 @@ def tabulate(paths: Sequence[Path]) -> PathTable:
         for path, offset in zip(paths, first.tolist(), strict=False)
         for index in path.arcs
     ]
-    return PathTable(points.reshape(-1, 3), first, np.array(arcs, dtype=np.intp))
+    line = np.arange(len(paths))
+    return PathTable(points.reshape(-1, 3), first, np.array(arcs, dtype=np.intp), line)
 
 
 def offsets(counts: Sequence[int] | Ints) -> Ints:
@@ -81,18 +80,18 @@ def spread(counts: Ints) -> tuple[Ints, Ints]:
 
 @dataclass(frozen=True, slots=True)
 class Samples:
-    """Many centre lines as points one after another."""
+    """Many lines as points one after another (m)."""
 
     points: Floats
     """(N, 3) [mm]"""
     arc: Bools
     """Whether the step from each point to the next is a chord of an arc (N); false at ends."""
     first: Ints
-    """Index of the first point of each line, and the number of points at the end (n + 1)."""
+    """Index of the first point of each line, and the number of points at the end (m + 1)."""
 
 
 def sample(paths: PathTable) -> Samples:
-    """Sample centre lines into points: straight parts by their ends, arcs by chords."""
+    """Sample lines into points: straight parts by their ends, arcs by chords."""
     if not paths.arcs.size:
         return Samples(paths.points, np.zeros(len(paths.points), dtype=bool), paths.first)
     return _with_arcs(paths.points, paths.first, paths.arcs)

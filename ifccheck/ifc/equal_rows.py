@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable
+from collections.abc import Iterable, Iterator
 from functools import cache
 
 import numpy as np
@@ -16,19 +16,33 @@ _LOW_BYTES = np.array([(1 << 8 * count) - 1 for count in range(WORD + 1)], dtype
 """Words whose first bytes are set, by how many."""
 
 
-def first_of_each(key: Words) -> tuple[Ints, Ints]:
-    """First row of each distinct row of integers, and which of them every row is."""
-    # the product wraps round: a hash that sorts a hundred times as fast
-    head, run = _runs(key @ _mixers(key.shape[1]))
-    heads = key[head]
-    _, first, number = np.unique(
-        heads @ _mixers(key.shape[1]), return_index=True, return_inverse=True
-    )
+def first_of_each(*columns: Words) -> tuple[Ints, Ints]:
+    """First row of each distinct row of whole numbers, and which of them every row is."""
+    mixed = columns[0] * _mixer(0)
+    for place, column in enumerate(columns[1:], start=1):
+        mixed += column * _mixer(place)  # wraps round: a hash that sorts a hundred times as fast
+    head, run = _runs(mixed)
+    _, first, number = np.unique(mixed[head], return_index=True, return_inverse=True)
     inverse = number.reshape(-1)
-    if (heads == heads[first[inverse]]).all() and _are_alike_in_runs(key, head):
+    if all(_is_settled(column, head, first[inverse]) for column in columns):
         return head[first], inverse[run]
+    key = np.column_stack(columns)
     _, first, number = np.unique(key, axis=0, return_index=True, return_inverse=True)
     return first, number.reshape(-1)
+
+
+def _is_settled(column: Words, head: Ints, first: Ints) -> bool:
+    """Whether numbers are the same all along runs, and those of runs that are taken for the
+    same."""
+    other = column[1:] != column[:-1]
+    other[head[1:] - 1] = False
+    heads = column[head]
+    return not other.any() and bool((heads == heads[first]).all())
+
+
+@cache
+def _mixer(place: int) -> int:
+    return int(np.random.default_rng(place).integers(1, 2**62)) * 2 + 1
 
 
 def first_of_each_number(values: Words) -> tuple[Ints, Ints]:
@@ -46,26 +60,13 @@ def _runs(values: Words) -> tuple[Ints, Ints]:
     return np.flatnonzero(begins), np.cumsum(begins) - 1
 
 
-def _are_alike_in_runs(key: Words, head: Ints) -> bool:
-    """Whether each row that begins no run is the same as the row before."""
-    other = np.ones(len(key), dtype=bool)
-    other[head] = False
-    same = key[1:] == key[:-1]
-    return bool(same[other[1:]].all())
-
-
-@cache
-def _mixers(count: int) -> Words:
-    return np.random.default_rng(1).integers(1, 2**62, count) * 2 + 1
-
-
 def first_of_each_text(data: Bytes, start: Ints, stop: Ints) -> tuple[Ints, Ints]:
     """First row of each distinct text, and which of them every row is; texts of bytes that lie
     between offsets."""
     found, number = [], np.zeros(len(start), dtype=np.intp)
     count = 0
     for rows, words in of_like_width(stop - start):
-        first, inverse = first_of_each(_as_words(data, start[rows], (stop - start)[rows], words))
+        first, inverse = first_of_each(*_as_words(data, start[rows], (stop - start)[rows], words))
         found.append(rows[first])
         number[rows] = count + inverse
         count += len(first)
@@ -83,16 +84,14 @@ def of_like_width(width: Ints) -> Iterable[tuple[Ints, int]]:
         left, words = left[~fits], words * 2
 
 
-def _as_words(data: Bytes, start: Ints, width: Ints, words: int) -> Words:
-    """Texts as words, nothing after their ends, and their width beside them."""
-    found = np.empty((len(start), words + 1), dtype=np.uint64)
+def _as_words(data: Bytes, start: Ints, width: Ints, words: int) -> Iterator[Words]:
+    """Texts word by word, nothing after their ends, and their width behind them."""
     least = int(width.min())
     for place, text in enumerate(words_at(data, start, words)):
         if least < (place + 1) * WORD:
             text &= _LOW_BYTES[np.clip(width - place * WORD, 0, WORD)]
-        found[:, place] = text
-    found[:, words] = width
-    return found.view(np.int64)
+        yield text.view(np.int64)
+    yield width
 
 
 def renumbered(number: Ints, count: int) -> tuple[Ints, Ints]:

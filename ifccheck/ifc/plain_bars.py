@@ -165,7 +165,7 @@ def _read_names(readers: BarReaders, step_ids: Ints, texts: BarTexts) -> Shared[
     )
     if nameless.any():
         tag = np.where(nameless[number], texts.tag.first_of_each()[1], -1)
-        first, number = first_of_each(np.column_stack((number, tag)))
+        first, number = first_of_each(number, tag)
 
     def read(row: int) -> str:
         itself = _ITSELF.fullmatch(texts.name.of(row))
@@ -195,7 +195,7 @@ def _read_data(
     swept = [thickness.view(np.int64)]
     if (shapes.widest > shapes.thickness).any():
         swept.append(widest.view(np.int64))
-    first, number = first_of_each(np.column_stack((*said, size, *related, *swept)))
+    first, number = first_of_each(*said, size, *related, *swept)
 
     def read(row: int) -> Data:
         product = readers.context.file.by_id(int(step_ids[row]))

@@ -182,8 +182,7 @@ class Places:
     def steel(self) -> Ints:
         """A number for each place, the same where legs, area, steel and form are the same."""
         area = np.rint(np.log(np.maximum(self.area, 1e-3)) / SAME_STEEL).astype(np.intp)
-        key = np.stack([self.legs, area, self.grade, self.closed.astype(np.intp)], axis=1)
-        return first_of_each(key)[1]
+        return first_of_each(self.legs, area, self.grade, self.closed.astype(np.intp))[1]
 
 
 @dataclass(frozen=True, slots=True)

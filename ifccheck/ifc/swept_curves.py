@@ -33,14 +33,14 @@ HASH, OPEN, CLOSE, COMMA = b"#(),"
 
 @dataclass(frozen=True, slots=True)
 class Lines:
-    """Centre lines of curves (C)."""
+    """Centre lines of curves (C), of which some are the same line (D)."""
 
     place: Ints
     """Which of the curves asked for each is."""
     paths: PathTable
     """In units of the model."""
     pieces: Floats
-    """How many pieces each has: its last parameter, as the standard counts."""
+    """How many pieces each line has: its last parameter, as the standard counts (D)."""
 
     def numbered(self, curves: Ints) -> Lines:
         """The same where some of several curves were asked for."""
@@ -61,8 +61,8 @@ class Lines:
 class _Lists:
     """Points that are listed (L), those of one list after those of another."""
 
-    place: Ints
-    """Which of the lists asked for each is."""
+    number: Ints
+    """Which of the lists each of those asked for is; -1 where it is not plain."""
     points: Floats
     """In units of the model (N, 3)."""
     counts: Ints
@@ -88,7 +88,8 @@ def polylines(table: StepTable, curves: Ints) -> Lines:
     kept = np.ones(len(plain), dtype=bool)
     kept[np.repeat(np.arange(len(plain)), counts)[~sound]] = False
     points, counts = points[np.repeat(kept, counts)], counts[kept]
-    paths = PathTable(points, offsets(counts), np.zeros(0, dtype=np.intp))
+    first, line = offsets(counts), np.arange(len(counts))
+    paths = PathTable(points, first, np.zeros(0, dtype=np.intp), line)
     return Lines(plain[kept], paths, counts.astype(float) - 1.0)
 
 
@@ -115,16 +116,22 @@ def indexed_curves(table: StepTable, curves: Ints) -> Lines:
     """Curves that take listed points in order, by their STEP ids."""
     place, lists, segments, texts = _segments(table, curves)
     listed = _listed_points(table, lists)
-    key = np.column_stack((segments[listed.place], listed.counts))
-    first, number = first_of_each(key)
-    orders = [_order(texts[segment], count) for segment, count in key[first].tolist()]
+    plain = np.flatnonzero(listed.number >= 0)
+    first, line = first_of_each(listed.number[plain], segments[plain])
+    lists, segments = listed.number[plain[first]], segments[plain[first]]
+    first, number = first_of_each(segments, listed.counts[lists])
+    found = zip(segments[first].tolist(), listed.counts[lists[first]].tolist(), strict=True)
+    orders = [_order(texts[segment], count) for segment, count in found]
     kept = np.array([order is not None for order in orders], dtype=bool)[number]
-    begin = offsets(listed.counts)[:-1][kept]
     used, number = renumbered(number[kept], len(orders))
     taken = [order for order in (orders[one] for one in used.tolist()) if order is not None]
+    begin = offsets(listed.counts)[lists[kept]]
     pieces = np.array([order.segments for order in taken], dtype=float)[number]
-    paths = _in_order(listed.points, begin, taken, number)
-    return Lines(place[listed.place[kept]], paths, pieces)
+    of_kept = kept[line]
+    line = (np.cumsum(kept) - 1)[line[of_kept]]
+    return Lines(
+        place[plain[of_kept]], _in_order(listed.points, begin, taken, number, line), pieces
+    )
 
 
 def _segments(table: StepTable, curves: Ints) -> tuple[Ints, Ints, Ints, list[bytes]]:
@@ -146,13 +153,16 @@ def _listed_points(table: StepTable, lists: Ints) -> _Lists:
     cursors = table.cursors(lists, "IFCCARTESIANPOINTLIST3D")
     cursors.tokens(b"(", b"(")
     rests = table.rests(cursors, lists).without_blanks()
-    plain, counts, begins, ends = _triples(rests)
+    first, number = rests.first_of_each()
+    plain, counts, begins, ends = _triples(rests.take(first))
     numbers, stop, sound = read_numbers(rests.data, begins)
     are_three = (sound & (stop == ends)).reshape(-1, 3).all(axis=1)
     kept = np.ones(len(plain), dtype=bool)
     kept[np.repeat(np.arange(len(plain)), counts)[~are_three]] = False
-    points = numbers.reshape(-1, 3)
-    return _Lists(plain[kept], points[np.repeat(kept, counts)], counts[kept])
+    points = numbers.reshape(-1, 3)[np.repeat(kept, counts)]
+    place = np.full(len(first), -1)
+    place[plain[kept]] = np.arange(int(kept.sum()))
+    return _Lists(place[number], points, counts[kept])
 
 
 def _triples(rests: Rests) -> tuple[Ints, Ints, Ints, Ints]:
@@ -213,12 +223,15 @@ def _order(segments: bytes, count: int) -> _Order | None:
     return _Order(tuple(order), tuple(arcs), len(found))
 
 
-def _in_order(points: Floats, begin: Ints, orders: Sequence[_Order], number: Ints) -> PathTable:
-    """Centre lines that take points in numbered orders; those of each begin at a place."""
+def _in_order(
+    points: Floats, begin: Ints, orders: Sequence[_Order], number: Ints, lines: Ints
+) -> PathTable:
+    """Lines that take points in numbered orders; those of each begin at a place. ``lines`` are
+    those that the centre lines are."""
     line, index = _laid_out([order.points for order in orders], number)
     arc_line, arc = _laid_out([order.arcs for order in orders], number)
     first = offsets(np.bincount(line, minlength=len(number)))
-    return PathTable(points[begin[line] + index], first, first[arc_line] + arc)
+    return PathTable(points[begin[line] + index], first, first[arc_line] + arc, lines)
 
 
 def _laid_out(runs: Sequence[tuple[int, ...]], number: Ints) -> tuple[Ints, Ints]:

@@ -50,9 +50,8 @@ def read_swept_texts(table: StepTable, solids: Ints, scale: float) -> SweptSolid
     left = others(len(asked.curve), lines.place)
     lines = lines.with_more(polylines(table, asked.curve[left]).numbered(left))
     whole = _whole(lines, asked.start[lines.place], asked.end[lines.place])
-    row = lines.place[whole]
-    paths = lines.paths if whole.all() else lines.paths.take(np.flatnonzero(whole))
-    paths = PathTable(paths.points * scale, paths.first, paths.arcs)
+    row, paths = lines.place[whole], lines.paths.take(whole)
+    paths = PathTable(paths.points * scale, paths.first, paths.arcs, paths.line)
     return _on_earth(SweptSolids(asked.place[row], paths, 2.0 * asked.radius[row] * scale))
 
 
@@ -78,14 +77,14 @@ def _whole(lines: Lines, start: Floats, end: Floats) -> Bools:
     begins: Bools = np.isnan(start) | (start == 0.0)
     if np.isnan(end).all():
         return begins
-    length = _lengths(lines.paths)
-    ends: Bools = np.isnan(end) | (np.abs(end - lines.pieces) <= PARAMETER_TOLERANCE * lines.pieces)
+    pieces, length = lines.pieces[lines.paths.line], _lengths(lines.paths)[lines.paths.line]
+    ends: Bools = np.isnan(end) | (np.abs(end - pieces) <= PARAMETER_TOLERANCE * pieces)
     ends |= np.abs(end - length) <= PARAMETER_TOLERANCE / 2.0 * length
     return np.asarray(begins & ends)
 
 
 def _lengths(paths: PathTable) -> Floats:
-    """Lengths of centre lines along their lines and arcs, in their own unit."""
+    """Lengths along lines and arcs of each line, in their own unit."""
     steps = sizes(np.diff(paths.points, axis=0, append=0.0))
     steps[paths.first[1:] - 1] = 0.0
     if len(paths.arcs):
@@ -99,11 +98,8 @@ def _lengths(paths: PathTable) -> Floats:
 def _on_earth(found: SweptSolids) -> SweptSolids:
     """Those of two points or more within reach; of the others the thorough reader tells."""
     points, first = found.paths.points, found.paths.first
-    near = (np.abs(points) < FARTHEST).all(axis=1)
-    count = np.diff(first)
-    line = np.repeat(np.arange(len(count)), count)
-    kept = (count >= 2) & (np.bincount(line[~near], minlength=len(count)) == 0)
-    if kept.all():
-        return found
-    taken = np.flatnonzero(kept)
-    return SweptSolids(found.place[taken], found.paths.take(taken), found.diameter[taken])
+    far = np.flatnonzero(~(np.abs(points) < FARTHEST).all(axis=1))
+    sound = np.diff(first) >= 2
+    sound[np.searchsorted(first, far, side="right") - 1] = False
+    kept = sound[found.paths.line]
+    return SweptSolids(found.place[kept], found.paths.take(kept), found.diameter[kept])
