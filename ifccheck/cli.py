@@ -12,6 +12,7 @@ import click
 
 from ifccheck import __version__
 from ifccheck.errors import IfccheckError
+from ifccheck.memory import uncollected
 
 if TYPE_CHECKING:
     from rich.console import Console
@@ -66,6 +67,7 @@ def main() -> None:
     multiple=True,
     help="Write only this result; may be repeated. All four are written without it.",
 )
+@uncollected()
 def rate(models: tuple[Path, ...], brief: Path, out: Path, only: tuple[str, ...]) -> None:
     """Rate every beam and write the rated model, the summary, the table and the data.
 

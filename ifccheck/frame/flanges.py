@@ -17,6 +17,8 @@ from dataclasses import dataclass
 from functools import cached_property, lru_cache
 from typing import TYPE_CHECKING, NamedTuple
 
+import numpy as np
+
 from ifccheck.beam import Axis, Beam, Flange, Member, Outline, Ring, Run, Slab
 from ifccheck.frame.along import varies
 from ifccheck.frame.contacts import kind_of
@@ -93,11 +95,12 @@ class Slabs:
     @cached_property
     def _named(self) -> dict[str, tuple[str, ...]]:
         slabs = [one for one in self._members if kind_of(one.ifc_class) == "IfcSlab"]
-        plates = [(web.ring,) for web in map(web_of, slabs)]
-        heights = [(web.low, web.high) for web in map(web_of, slabs)]
+        plates = [web_of(slab) for slab in slabs]
+        plans = [(plate.ring,) for plate in plates]
+        heights = [(plate.low, plate.high) for plate in plates]
         return {
             key: tuple(dict.fromkeys(_called(slabs[row]) for row in rows))
-            for key, rows in _near(self._level, plates, heights).items()
+            for key, rows in _near(self._level, plans, heights).items()
         }
 
     @cached_property
@@ -155,10 +158,10 @@ def _near(
     places, own = zip(*map(_place, beams), strict=True)
     tree = shapely.STRtree([shapely.Polygon(plan[0], plan[1:]) for plan in plans])
     pairs = tree.query(shapely.polygons(list(places)), predicate="intersects")
-    for beam, row in sorted(zip(*pairs.tolist(), strict=True)):
-        (soffit, top), (bottom, upper) = own[beam], heights[row]
-        if bottom <= top + TOUCHING and upper >= soffit:
-            found[beams[beam].key].append(row)
+    (soffit, top), (bottom, upper) = np.array(own)[pairs[0]].T, np.array(heights)[pairs[1]].T
+    level = pairs[:, (bottom <= top + TOUCHING) & (upper >= soffit)]
+    for beam, row in sorted(zip(*level.tolist(), strict=True)):
+        found[beams[beam].key].append(row)
     return found
 
 
@@ -166,7 +169,7 @@ def _place(beam: Beam) -> tuple[list[tuple[float, float]], tuple[float, float]]:
     """The rectangle that a beam covers in plan, a little grown, and its soffit and top."""
     assert beam.axis is not None
     points = [point for run in beam.runs for ring in run.outline.rings for point in ring]
-    ys, zs = [y for y, _ in points], [z for _, z in points]
+    ys, zs = zip(*points, strict=True)
     (x0, y0, z0), (x, y, _), (left_x, left_y, _) = beam.axis.origin, beam.axis.x, beam.axis.y
     right, left = min(ys) - TOUCHING, max(ys) + TOUCHING
     ends = ((0.0, right), (beam.length, right), (beam.length, left), (0.0, left))

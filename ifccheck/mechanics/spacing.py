@@ -33,10 +33,33 @@ def distance_to_surface(y: Floats, z: Floats, rings: Sequence[Ring]) -> Floats:
     >>> distance_to_surface(np.array([50.0]), np.array([200.0]), [square])
     array([50.])
     """
-    start = np.concatenate([np.asarray(ring, dtype=np.float64) for ring in rings])
-    end = np.concatenate(
-        [np.roll(np.asarray(ring, dtype=np.float64), -1, axis=0) for ring in rings]
-    )
+    return distance_to_edges(y, z, edges_of(rings))
+
+
+def edges_of(rings: Sequence[Ring]) -> Floats:
+    """The edges of an outline: where each starts and ends (E, 2, 2)."""
+    corners = [np.asarray(ring, dtype=np.float64) for ring in rings]
+    ends = [np.roll(ring, -1, axis=0) for ring in corners]
+    return np.stack([np.concatenate(corners), np.concatenate(ends)], axis=1)
+
+
+def distance_to_edges(y: Floats, z: Floats, edges: Floats) -> Floats:
+    """Distance of points from the nearest of some edges.
+
+    Parameters
+    ----------
+    y, z
+        Points [mm] (P).
+    edges
+        Where each edge starts and ends: those for all points (E, 2, 2), or for each its own
+        (P, E, 2, 2) [mm].
+
+    Returns
+    -------
+    Floats
+        [mm] (P)
+    """
+    start, end = edges[..., 0, :], edges[..., 1, :]
     point = np.stack([y, z], axis=-1)[:, None, :]
     edge = end - start
     length_squared = np.maximum(np.sum(edge * edge, axis=-1), 1e-12)

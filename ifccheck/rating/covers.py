@@ -3,8 +3,9 @@
 from __future__ import annotations
 
 from collections import defaultdict
-from collections.abc import Iterable, Iterator, Sequence
+from collections.abc import Iterable, Sequence
 from dataclasses import dataclass, fields
+from typing import NamedTuple
 
 import numpy as np
 
@@ -13,7 +14,9 @@ from ifccheck.mechanics.arrays import Bools, Floats, Ints
 from ifccheck.mechanics.spacing import (
     BarPlace,
     bundled,
+    distance_to_edges,
     distance_to_surface,
+    edges_of,
     lapped,
     nearest_neighbour,
 )
@@ -85,42 +88,74 @@ def _to_surface(
 ) -> Floats:
     """Distance of each bar from the surface of the sections of its beam that it runs through [mm]:
     the least of them."""
+    runs = _runs_of(subjects)
+    bar, run = _pairs(runs, counts)
+    meets = (start[bar] < runs.end[run]) & (end[bar] > runs.start[run])
+    beyond = (end[bar] <= runs.start[run]) | (start[bar] >= runs.last[run])
+    told = np.where(runs.tapered[run], False, meets) | (runs.first[run] & beyond)
     distance = np.full(y.size, np.inf)
-    for outline, parts in _bars_of_outlines(subjects, start, end, counts).items():
-        bars = np.concatenate(parts)
-        found = distance_to_surface(y[bars], z[bars], outline.rings)
-        distance[bars] = np.minimum(distance[bars], found)
+    rows, edges = bar[told], _edges(runs.outlines)
+    of_each = edges[runs.outline[run[told]]]
+    np.minimum.at(distance, rows, distance_to_edges(y[rows], z[rows], of_each))
+    for row, taper in zip(*(each[meets & runs.tapered[run]] for each in (bar, run)), strict=True):
+        tapering = runs.runs[taper]
+        for place in (max(tapering.start, start[row]), min(tapering.end, end[row])):
+            rings = outline_at(tapering, place).rings
+            near = distance_to_surface(y[row : row + 1], z[row : row + 1], rings)
+            distance[row] = min(distance[row], near[0])
     return distance
 
 
-def _bars_of_outlines(
-    subjects: Sequence[Subject], start: Floats, end: Floats, counts: Ints
-) -> dict[Outline, list[Ints]]:
-    """Rows of the bars that run through each outline; one that runs through none is told by the
-    first of its beam. In a taper a bar runs through those at the ends of what it has of it."""
-    found: dict[Outline, list[Ints]] = defaultdict(list)
-    first = 0
-    for subject, count in zip(subjects, counts.tolist(), strict=True):
-        bars = np.arange(first, first + count)
-        first += count
-        for run in subject.runs:
-            meets = bars[(start[bars] < run.end) & (end[bars] > run.start)]
-            for outline, rows in _within(run, meets, start, end):
-                found[outline].append(rows)
-            if run is subject.runs[0]:
-                beyond = (end[bars] <= run.start) | (start[bars] >= subject.runs[-1].end)
-                found[run.outline].append(bars[beyond])
-    return found
+class _Runs(NamedTuple):
+    """The runs of all beams (R)."""
+
+    runs: Sequence[Run]
+    beam: Ints
+    start: Floats
+    end: Floats
+    last: Floats
+    """Where the last run of the beam ends"""
+    first: Bools
+    """It is the first of its beam, and tells of bars that run through none"""
+    tapered: Bools
+    outline: Ints
+    """Which of the outlines it has"""
+    outlines: Sequence[Outline]
 
 
-def _within(run: Run, bars: Ints, start: Floats, end: Floats) -> Iterator[tuple[Outline, Ints]]:
-    """The outlines of a run with the bars that lie in each."""
-    if run.outline_end is None:
-        yield run.outline, bars
-        return
-    for row in bars:
-        for place in (max(run.start, start[row]), min(run.end, end[row])):
-            yield outline_at(run, place), np.array([row])
+def _runs_of(subjects: Sequence[Subject]) -> _Runs:
+    runs = [run for subject in subjects for run in subject.runs]
+    counts = [len(subject.runs) for subject in subjects]
+    beam = np.repeat(np.arange(len(counts)), counts)
+    number: dict[Outline, int] = {}
+    outline = [number.setdefault(run.outline, len(number)) for run in runs]
+    return _Runs(
+        runs=runs,
+        beam=beam,
+        start=column(run.start for run in runs),
+        end=column(run.end for run in runs),
+        last=column(subject.runs[-1].end for subject in subjects)[beam],
+        first=np.diff(beam, prepend=-1) > 0,
+        tapered=np.array([run.outline_end is not None for run in runs]),
+        outline=np.array(outline),
+        outlines=tuple(number),
+    )
+
+
+def _pairs(runs: _Runs, counts: Ints) -> tuple[Ints, Ints]:
+    """Every bar with every run of its beam."""
+    first = np.cumsum(counts) - counts
+    of_run = counts[runs.beam]
+    run = np.repeat(np.arange(of_run.size), of_run)
+    within = np.arange(run.size) - np.repeat(np.cumsum(of_run) - of_run, of_run)
+    return first[runs.beam[run]] + within, run
+
+
+def _edges(outlines: Sequence[Outline]) -> Floats:
+    """Edges of each outline; where it has fewer than others its last one again (O, E, 2, 2)."""
+    each = [edges_of(outline.rings) for outline in outlines]
+    most = max(map(len, each))
+    return np.array([[*edges, *[edges[-1]] * (most - len(edges))] for edges in each])
 
 
 def _neighbours(places: BarPlace, counts: Ints) -> tuple[Floats, Ints, Bools]:

@@ -56,6 +56,6 @@ def deep_member(
 
 def _greatest_depth(run: Run) -> float:
     """The depth of a run where it is greatest [mm]."""
-    outlines = [run.outline, run.outline_end or run.outline]
+    outlines = [run.outline] if run.outline_end is None else [run.outline, run.outline_end]
     depths = [high - low for _, _, low, high in (bounds(each.rings) for each in outlines)]
     return max(depths)

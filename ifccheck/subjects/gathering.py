@@ -127,8 +127,8 @@ def _one(
     if standing and steel:
         slab = counted(beam, _asked(beam, sources, statement, concrete), loads)
         net = net_of(beam, standing, loads, steel, slab)
-        rated = net.body.runs if net.body else beam.runs
-        findings.reasons += deep_member(rated, standing.faces, sources.standard)
+        if net.body:
+            findings.reasons += deep_member(net.body.runs, standing.faces, sources.standard)
     findings.take(net)
     if standing is None or steel is None or any(reason.blocking for reason in findings.reasons):
         return Unrated(beam, _distinct(findings.reasons), tuple(findings.remarks))
