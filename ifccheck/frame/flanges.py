@@ -18,6 +18,7 @@ from functools import cached_property, lru_cache
 from typing import TYPE_CHECKING, NamedTuple
 
 import numpy as np
+from numpy.typing import NDArray
 
 from ifccheck.beam import Axis, Beam, Flange, Member, Outline, Ring, Run, Slab
 from ifccheck.frame.along import varies
@@ -156,12 +157,28 @@ def _near(
     import shapely
 
     places, own = zip(*map(_place, beams), strict=True)
-    tree = shapely.STRtree([shapely.Polygon(plan[0], plan[1:]) for plan in plans])
+    tree = shapely.STRtree(_polygons(plans))
     pairs = tree.query(shapely.polygons(list(places)), predicate="intersects")
     (soffit, top), (bottom, upper) = np.array(own)[pairs[0]].T, np.array(heights)[pairs[1]].T
     level = pairs[:, (bottom <= top + TOUCHING) & (upper >= soffit)]
     for beam, row in sorted(zip(*level.tolist(), strict=True)):
         found[beams[beam].key].append(row)
+    return found
+
+
+def _polygons(plans: Sequence[Plan]) -> NDArray[np.object_]:
+    """Many plans as polygons; one that covers nothing as an empty one."""
+    import shapely
+
+    rings = [ring for plan in plans for ring in plan if ring]
+    of_plan = [row for row, plan in enumerate(plans) for ring in plan if ring]
+    found = np.full(len(plans), shapely.Polygon(), dtype=np.object_)
+    if rings:
+        points = np.array([point for ring in rings for point in ring])
+        of_ring = np.repeat(np.arange(len(rings)), list(map(len, rings)))
+        lines = np.asarray(shapely.linearrings(points, indices=of_ring), dtype=np.object_)
+        rows, number = np.unique(of_plan, return_inverse=True)
+        found[rows] = shapely.polygons(lines, indices=number)
     return found
 
 

@@ -38,9 +38,11 @@ def told_precast(context: Context, step_id: int, clues: Clues, sets: Sets) -> st
     for set_name in PRECAST_SETS:
         if set_name in sets:
             return set_name
+    general = sets.get(GENERAL, {})
     for name in HOW_MADE:
-        value = sets.get(GENERAL, {}).get(name)
-        said = str(value.value) if value is not None else ""
+        if (value := general.get(name)) is None:
+            continue
+        said = str(value.value)
         if PRECAST.search(said) or MADE_ELSEWHERE.search(said):
             return f"{GENERAL}.{name} {said}"
     for whole in map(context.file.by_id, context.relations.ancestors(step_id)):

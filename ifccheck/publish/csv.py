@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import csv
 import io
-import math
+from math import isfinite
 
 from ifccheck.publish.report import Report
 from ifccheck.publish.words import plain
@@ -29,16 +29,11 @@ def ratings_csv(report: Report) -> str:
 
 
 def _cells(column: list[Cell]) -> list[Cell]:
-    """A column as it is written; equal texts are looked at once."""
-    texts = {value: neutral(value) for value in set(column) if isinstance(value, str)}
-    return [
-        texts[value]
-        if isinstance(value, str)
-        else None
-        if isinstance(value, float) and not math.isfinite(value)
-        else value
-        for value in column
-    ]
+    """A column as it is written; what is the same is looked at once."""
+    distinct = set(column)
+    other: dict[Cell, Cell] = {each: neutral(each) for each in distinct if isinstance(each, str)}
+    other |= {each: None for each in distinct if isinstance(each, float) and not isfinite(each)}
+    return [other.get(value, value) for value in column]
 
 
 def neutral(text: str) -> str:

@@ -125,20 +125,38 @@ def _support(support: Support) -> str:
 
 
 def _limit_state(state: LimitStateRating) -> str:
-    return _LIMIT_STATE % (
-        _text(state.name),
-        _text(state.title),
+    words = _limit_state_words(
+        state.name, state.title, utilisation_state(state.utilisation), state.combination,
+        state.demand_unit, state.clause, state.counted, state.why_not,
+    )  # fmt: skip
+    return words % (
         _number(state.utilisation),
-        _text(utilisation_state(state.utilisation)),
         _number(state.position),
-        _text(state.combination),
         _number(state.demand),
         _number(state.resistance),
-        _text(state.demand_unit),
-        _text(state.clause),
-        _truth(state.counted),
-        _text(state.why_not),
     )
+
+
+@lru_cache(maxsize=KEPT)
+def _limit_state_words(
+    name: str,
+    title: str,
+    known: str,
+    combination: str,
+    unit: str,
+    clause: str,
+    counted: bool,
+    why_not: str,
+) -> str:
+    """What many beams share, with places for the figures of each."""
+    name, title, known, combination, unit, clause, why_not = (
+        _text(each).replace("%", "%%")
+        for each in (name, title, known, combination, unit, clause, why_not)
+    )
+    return _LIMIT_STATE % (
+        name, title, "%s", known, "%s", combination, "%s", "%s", unit, clause, _truth(counted),
+        why_not,
+    )  # fmt: skip
 
 
 def _safe_load(safe: SafeLoad) -> str:
@@ -157,12 +175,8 @@ def _safe_load(safe: SafeLoad) -> str:
 
 
 def _remark(remark: Remark) -> str:
-    return _REMARK % (
-        _text(remark.beam) if remark.beam is not None else "null",
-        _text(remark.stage),
-        _text(remark.kind),
-        _text(remark.text),
-    )
+    beam = _text(remark.beam) if remark.beam is not None else "null"
+    return _REMARK % (beam, _text(remark.stage), _text(remark.kind), _text(remark.text))
 
 
 @lru_cache(maxsize=KEPT)

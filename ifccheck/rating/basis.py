@@ -106,8 +106,10 @@ def _support(name: str, label: str, support: Support) -> BasisItem:
 
 
 def _steel(subject: Subject) -> list[BasisItem]:
-    lower = [bar for bar in subject.bars if bar.z < _middle(subject, bar)]
-    upper = [bar for bar in subject.bars if bar.z >= _middle(subject, bar)]
+    lower: list[Bars] = []
+    upper: list[Bars] = []
+    for bar in subject.bars:
+        (lower if bar.z < _middle(subject, bar) else upper).append(bar)
     source = subject.reinforcement_source
     return [
         BasisItem("BottomBars", "bars in the lower half", _bars_text(lower), "text", source),
