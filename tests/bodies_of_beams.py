@@ -82,6 +82,20 @@ class Bodies:
         depth = self.length(end - start)
         return self.make("IfcExtrudedAreaSolid", self.profile(places), axes, self.up(), depth)
 
+    def against(self, places: Places, start: float, end: float) -> Any:
+        """The same, pushed from the end of the beam to its start."""
+        axes = self.axes((end, 0, 0), (-1, 0, 0), (0, -1, 0))
+        depth = self.length(end - start)
+        mirrored = [(-y, z) for y, z in places]
+        return self.make("IfcExtrudedAreaSolid", self.profile(mirrored), axes, self.up(), depth)
+
+    def plan(self, places: Places, low: float, high: float) -> Any:
+        """What its plan (x, y) makes, pushed down from its top."""
+        axes = self.axes((0, 0, high), (0, 0, -1), (1, 0, 0))
+        depth = self.length(high - low)
+        mirrored = [(x, -y) for x, y in places]
+        return self.make("IfcExtrudedAreaSolid", self.profile(mirrored), axes, self.up(), depth)
+
     def elevation(self, places: Places, width: float) -> Any:
         """What its elevation (x, z) makes, pushed across its width."""
         axes = self.axes((0, width / 2.0, 0), (0, -1, 0), (1, 0, 0))
@@ -414,6 +428,7 @@ class Kind:
 
 KINDS: dict[str, Kind] = {
     "extrusion": Kind(lambda b, places, length: [b.extrusion(places, 0.0, length)]),
+    "extrusion against the span": Kind(lambda b, places, length: [b.against(places, 0.0, length)]),
     "mapped item": Kind(lambda b, places, length: [b.mapped(b.extrusion(places, 0.0, length))]),
     "mapped item, larger": Kind(_mapped_larger),
     "mapped item, mirrored": Kind(_mapped_mirrored),

@@ -33,9 +33,10 @@ SIZES = {"10M": (11.3, 100.0), "15M": (16.0, 200.0), "20M": (19.5, 300.0), "25M"
          "30M": (29.9, 700.0)}  # fmt: skip
 """Diameter [mm] and area [mm2] of the Canadian bars"""
 POUND_FORCE = 4.4482216152605
-LENGTH_UNITS = {"mm": 1.0, "m": 1000.0, "inch": 25.4}
-PRESSURE_UNITS = {"mm": 1.0, "m": 1e-6, "inch": POUND_FORCE / 25.4**2}
-AREA_UNITS = {"mm": 1e6, "m": 1e6, "inch": 25.4**2}
+LENGTH_UNITS = {"mm": 1.0, "m": 1000.0, "inch": 25.4, "foot": 304.8}
+PSI = POUND_FORCE / 25.4**2
+PRESSURE_UNITS = {"mm": 1.0, "m": 1e-6, "inch": PSI, "foot": 1000.0 * PSI}
+AREA_UNITS = {"mm": 1e6, "m": 1e6, "inch": 25.4**2, "foot": 304.8**2}
 """What each unit of the models is worth in mm, MPa and mm2"""
 
 
@@ -123,7 +124,7 @@ class Setting:
     """How a model is written."""
 
     schema: Literal["IFC2X3", "IFC4", "IFC4X3"] = "IFC4"
-    unit: Literal["mm", "m", "inch"] = "mm"
+    unit: Literal["mm", "m", "inch", "foot"] = "mm"
     angle: float = 0.0
     """The building is turned about the vertical by this [deg]"""
     turned_by: Literal["building", "elements", "bodies"] = "elements"
@@ -204,12 +205,14 @@ class Model:
         metre = self.make("IfcSIUnit", UnitType="LENGTHUNIT", Name="METRE")
         square = self.make("IfcSIUnit", UnitType="AREAUNIT", Name="SQUARE_METRE")
         pascal = self.make("IfcSIUnit", UnitType="PRESSUREUNIT", Name="PASCAL")
-        if self.setting.unit == "inch":
-            psi = POUND_FORCE / 0.0254**2
+        unit = self.setting.unit
+        if unit in ("inch", "foot"):
+            long, stress = LENGTH_UNITS[unit] / 1000.0, PRESSURE_UNITS[unit] * 1e6
+            name = "psi" if unit == "inch" else "ksi"
             return [
-                self._converted("LENGTHUNIT", "inch", "IfcLengthMeasure", 0.0254, metre),
-                self._converted("AREAUNIT", "square inch", "IfcAreaMeasure", 0.0254**2, square),
-                self._converted("PRESSUREUNIT", "psi", "IfcPressureMeasure", psi, pascal),
+                self._converted("LENGTHUNIT", unit, "IfcLengthMeasure", long, metre),
+                self._converted("AREAUNIT", f"square {unit}", "IfcAreaMeasure", long**2, square),
+                self._converted("PRESSUREUNIT", name, "IfcPressureMeasure", stress, pascal),
             ]
         if self.setting.unit == "mm":
             metre.Prefix, pascal.Prefix = "MILLI", "MEGA"
