@@ -50,7 +50,7 @@ ROUNDS = 3
 def main() -> None:
     """Write, time and print."""
     with tempfile.TemporaryDirectory() as folder:
-        model = Path(sys.argv[1]) if len(sys.argv) > 1 else _written(Path(folder))
+        model = Path(sys.argv[1]) if len(sys.argv) > 1 else written(Path(folder))
         brief = Path(folder) / "brief.toml"
         brief.write_text(BRIEF, encoding="utf-8")
         _warm()
@@ -66,7 +66,8 @@ def main() -> None:
         print(f"{'whole run without HTML':<45} {sum(best.values()) / opening:5.2f} x open")
 
 
-def _written(folder: Path) -> Path:
+def written(folder: Path) -> Path:
+    """Return the frame, written into a folder by the generator."""
     model = folder / "frame.ifc"
     size = ["--storeys", "9", "--bx", "10", "--by", "10"]
     subprocess.run([sys.executable, str(GENERATOR), str(model), *size], check=True)
