@@ -10,7 +10,7 @@ from typing import TypeVar
 
 from ifccheck.beam import Face, Reason
 from ifccheck.ifc.context import Context
-from ifccheck.ifc.entity import ILL_TYPED, Entity, UnreadableError, get, label, several, text
+from ifccheck.ifc.entity import ILL_TYPED, Entity, UnreadableError, get, label, text
 from ifccheck.ifc.physical import MAIN_ROLES, TIE_ROLES
 from ifccheck.ifc.profiles import Profiles
 from ifccheck.ifc.section_bars import SectionBars, number, read_bars
@@ -79,7 +79,7 @@ class RowReader:
         stated = Stated()
         said = _face_in(" ".join(text(definition, name) for name in _NAMING))
         sections = _guarded(
-            definition, stated, partial(several, definition, "ReinforcementSectionDefinitions")
+            definition, stated, partial(_listed, definition, "ReinforcementSectionDefinitions")
         )
         for section in sections or ():
             _guarded(section, stated, partial(self._add, section, said, stated))
@@ -100,7 +100,7 @@ class RowReader:
             return
         if role not in MAIN_ROLES:
             raise UnreadableError(f"its role ({role}) does not tell whether its bars run along")
-        bars = several(section, "CrossSectionReinforcementDefinitions")
+        bars = _listed(section, "CrossSectionReinforcementDefinitions")
         if not bars:
             raise UnreadableError("it holds no bars")
         for one in bars:
@@ -155,6 +155,14 @@ def _guarded(entity: Entity, stated: Stated, read: Callable[[], T]) -> T | None:
             Reason(f"{label(entity)} does not hold what its class asks ({error})")
         )
     return None
+
+
+def _listed(entity: Entity, name: str) -> tuple[Entity, ...]:
+    """The entities of a list, empty where it is not given."""
+    held = get(entity, name) or ()
+    if not isinstance(held, tuple) or not all(hasattr(one, "is_a") for one in held):
+        raise UnreadableError(f"its {name} does not hold what its class asks")
+    return held
 
 
 def _needed(entity: Entity, name: str, why: str) -> float:
