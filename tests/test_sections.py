@@ -10,7 +10,6 @@ import ifcopenshell.guid
 import pytest
 
 from ifccheck.beam import BarGroup, Outline, Reinforcement, Run
-from ifccheck.ifc.context import BeamFrame
 from tests.barred_beams import MILLIMETRES, ModelWithBars, straight
 from tests.section_definitions import Piece, Writer
 
@@ -145,7 +144,7 @@ def test_a_section_of_about_the_height_in_either_direction_is_not(profile: Any) 
 
 
 def _frame(run: Run, model: ModelWithBars, beam: Any) -> None:
-    model.frames[beam.id()] = BeamFrame(model.frames[beam.id()].axis, (run,))
+    model.frames[beam.id()] = replace(model.frames[beam.id()], runs=(run,))
 
 
 def test_a_taper_beside_a_section_is_a_reason() -> None:

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import re
-from collections.abc import Callable, Iterable, Mapping, Sequence
+from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass, replace
 from typing import Any, Literal
 
@@ -17,7 +17,7 @@ from ifccheck.ifc.bar_sizes import (
     settle_size,
     yield_of_grade,
 )
-from ifccheck.ifc.context import Context
+from ifccheck.ifc.context import BeamFrame, Context
 from ifccheck.ifc.mapped import Places, Stated
 from ifccheck.ifc.properties import Form, PropertyValue
 from ifccheck.ifc.units import ModelUnits, UnitKind
@@ -69,7 +69,7 @@ class CannotReadError(Exception):
 
 
 def read_described(
-    context: Context, beams: Iterable[int], mapping: Mapping[str, str]
+    context: Context, hosts: Mapping[int, BeamFrame], mapping: Mapping[str, str]
 ) -> dict[int, Reinforcement]:
     """Read what property sets tell of the reinforcement of beams, by STEP id.
 
@@ -77,10 +77,10 @@ def read_described(
     """
     places = _places(mapping)
     found: dict[int, Reinforcement] = {}
-    for beam in beams:
+    for beam, frame in hosts.items():
         stated = places.stated(context, beam)
         if stated:
-            found[beam] = _described(stated, context.units, str(context.file.by_id(beam)[0]))
+            found[beam] = _described(stated, context.units, frame.guid)
     return found
 
 

@@ -65,7 +65,7 @@ def extents(rows: Sequence[Row], offset: float, length: float) -> list[Extent]:
     for row in rows:
         if row.end - row.start <= SAME_PLACE:
             raise UnreadableError(
-                f"{row.origin}: reaches from {show(row.start, 'length')} to"
+                f"{row.name}: reaches from {show(row.start, 'length')} to"
                 f" {show(row.end, 'length')}, which is no length"
             )
     outside = [row for row in rows if not _fits(row, offset, length)]
@@ -82,7 +82,7 @@ def extents(rows: Sequence[Row], offset: float, length: float) -> list[Extent]:
         row = outside[0]
         start, end = (show(place - offset, "length") for place in (row.start, row.end))
         raise UnreadableError(
-            f"{row.origin}: reaches from {start} to {end} along the beam, which is"
+            f"{row.name}: reaches from {start} to {end} along the beam, which is"
             f" {show(length, 'length')} long"
         )
     return [_clipped(row, offset, length) for row in rows]
@@ -129,25 +129,25 @@ def levels(row: Row, extent: Extent, frame: BeamFrame) -> Levels:
     lows, highs = [low for _, low, _ in boxes], [high for _, _, high in boxes]
     if not boxes or max(max(lows) - min(lows), max(highs) - min(highs)) > SAME_PLACE:
         raise UnreadableError(
-            f"{row.origin}: the depth of the body changes along its section, so its effective depth"
+            f"{row.name}: the depth of the body changes along its section, so its effective depth"
             " does not tell where its bars lie"
         )
     found = Levels(max(lows), min(highs))
     for profile in row.heights:
         if min(abs(size - found.height) for size in profile) > SAME_HEIGHT * found.height:
             raise UnreadableError(
-                f"{row.origin}: its section is {profile[0]:.0f} x {profile[1]:.0f} mm, the body is"
+                f"{row.name}: its section is {profile[0]:.0f} x {profile[1]:.0f} mm, the body is"
                 f" {found.height:.0f} mm high"
             )
     if not 0.0 < row.depth < found.height:
         raise UnreadableError(
-            f"{row.origin}: its effective depth of {row.depth:.0f} mm leaves the body, which is"
+            f"{row.name}: its effective depth of {row.depth:.0f} mm leaves the body, which is"
             f" {found.height:.0f} mm high"
         )
     width = min(width for width, _, _ in boxes)
     if abs(row.transverse) > width:
         raise UnreadableError(
-            f"{row.origin}: its transverse position of {row.transverse:.0f} mm leaves the body,"
+            f"{row.name}: its transverse position of {row.transverse:.0f} mm leaves the body,"
             f" which is {width:.0f} mm wide"
         )
     return found
@@ -211,6 +211,6 @@ def _lying(row: Row, at: Levels, from_top: bool, alone: bool) -> Lying:
         return Lying("bottom" if is_deep else "top", below_top, assumed=True)
     called = "" if row.said is None else f"which is called {row.said} reinforcement, "
     raise UnreadableError(
-        f"{row.origin}: an effective depth of {row.depth:.0f} mm in {at.height:.0f} mm, {called}"
+        f"{row.name}: an effective depth of {row.depth:.0f} mm in {at.height:.0f} mm, {called}"
         "does not tell at which face its bars lie: name the definition top or bottom"
     )

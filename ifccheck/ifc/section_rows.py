@@ -35,7 +35,8 @@ _HUMP = re.compile(r"(?<=[^\W\d_A-Z])(?=[A-Z])")
 class Row:
     """Bars of one size at one depth, from one place to another."""
 
-    origin: str
+    name: str
+    """What its bars are called."""
     start: float
     end: float
     """Lengths along an axis of the beam's placement [mm]"""
@@ -79,10 +80,13 @@ class RowReader:
         stated = Stated()
         said = _face_in(" ".join(text(definition, name) for name in _NAMING))
         sections = _guarded(
-            definition, stated, partial(_listed, definition, "ReinforcementSectionDefinitions")
+            definition,
+            stated,
+            partial(_listed, definition, "ReinforcementSectionDefinitions"),
+            label,
         )
         for section in sections or ():
-            _guarded(section, stated, partial(self._add, section, said, stated))
+            _guarded(section, stated, partial(self._add, section, said, stated), _section)
         if not stated.rows and not stated.reasons:
             stated.reasons.append(Reason(f"{label(definition)} holds no section"))
         return stated
@@ -92,8 +96,8 @@ class RowReader:
         if role in SHEAR_ROLES:
             stated.reasons.append(
                 Reason(
-                    f"{label(section)}: by its role ({role}) reinforcement against shear, of which"
-                    " a section states neither spacing nor legs: not counted",
+                    f"{_section(section)}: by its role ({role}) reinforcement against shear, of"
+                    " which a section states neither spacing nor legs: not counted",
                     blocking=False,
                 )
             )
@@ -104,7 +108,7 @@ class RowReader:
         if not bars:
             raise UnreadableError("it holds no bars")
         for one in bars:
-            row = _guarded(one, stated, partial(self._row, section, one, said))
+            row = _guarded(one, stated, partial(self._row, section, one, said), _bars)
             if row is not None:
                 stated.rows.append(row)
 
@@ -116,7 +120,7 @@ class RowReader:
             for name in ("LongitudinalStartPosition", "LongitudinalEndPosition")
         )
         return Row(
-            origin=label(bars),
+            name=_bars(bars),
             start=start,
             end=end,
             depth=depth * millimetres,
@@ -144,17 +148,27 @@ class RowReader:
 _NAMING = ("Name", "Description", "DefinitionType")
 
 
-def _guarded(entity: Entity, stated: Stated, read: Callable[[], T]) -> T | None:
+def _guarded(
+    entity: Entity, stated: Stated, read: Callable[[], T], name: Callable[[Entity], str]
+) -> T | None:
     """What is read of an entity; why it cannot be read becomes a reason."""
     try:
         return read()
     except UnreadableError as error:
-        stated.reasons.append(Reason(f"{label(entity)}: {error}"))
+        stated.reasons.append(Reason(f"{name(entity)}: {error}"))
     except ILL_TYPED as error:
         stated.reasons.append(
-            Reason(f"{label(entity)} does not hold what its class asks ({error})")
+            Reason(f"{name(entity)}: does not hold what its class asks ({error})")
         )
     return None
+
+
+def _bars(entity: Entity) -> str:
+    return f"bars #{entity.id()}"
+
+
+def _section(entity: Entity) -> str:
+    return f"bars of section #{entity.id()}"
 
 
 def _listed(entity: Entity, name: str) -> tuple[Entity, ...]:

@@ -72,15 +72,14 @@ class _Findings:
 def _read(
     context: Context, beam: int, frame: BeamFrame, stated: Stated, passed_over: Sequence[int]
 ) -> Reinforcement:
-    entity = context.file.by_id(beam)
-    findings = _Findings(str(entity[0]), reasons=list(stated.reasons))
+    findings = _Findings(frame.guid, reasons=list(stated.reasons))
     if passed_over:
         findings.remark("its type defines sections of reinforcement too: its own are counted")
     rows = list(_without_repeats(stated.rows, findings))
     zones: tuple[DescribedZone, ...] = ()
     try:
         if rows:
-            offset = offset_of(context.placements.matrix(entity), frame)
+            offset = offset_of(context.placements.matrix(context.file.by_id(beam)), frame)
             reach = extents(rows, offset, frame.axis.length)
             zones = tuple(_zones(rows, reach, frame, findings))
     except UnreadableError as error:
@@ -102,7 +101,7 @@ def _without_repeats(rows: Sequence[Row], findings: _Findings) -> Iterator[Row]:
         if first is row:
             yield row
         else:
-            findings.remark(f"{row.origin} repeats {first.origin}: counted once")
+            findings.remark(f"{row.name} repeats {first.name}: counted once")
 
 
 def _zones(
@@ -121,21 +120,21 @@ def _zones(
 
 
 def _bar_row(row: Row, at: Lying) -> BarRow:
-    return BarRow(at.face, row.bars.group, at.z, row.bars.yield_strength, row.origin)
+    return BarRow(at.face, row.bars.group, at.z, row.bars.yield_strength, row.name)
 
 
 def _tell(row: Row, at: Lying, findings: _Findings) -> None:
     for doubt in row.bars.doubts:
-        findings.remark(f"{row.origin}: {doubt}")
+        findings.remark(f"{row.name}: {doubt}")
     if at.assumed:
         findings.remark(
-            f"{row.origin}: its effective depth of {row.depth:.0f} mm is taken from the top:"
+            f"{row.name}: its effective depth of {row.depth:.0f} mm is taken from the top:"
             f" {show_bars((row.bars.group,))} at the {at.face}",
             "assumption",
         )
     if row.transverse:
         findings.remark(
-            f"{row.origin}: its transverse position of {row.transverse:.0f} mm is not used: its"
+            f"{row.name}: its transverse position of {row.transverse:.0f} mm is not used: its"
             " bars are spread over the width",
             "note",
         )
