@@ -673,6 +673,33 @@ def test_bars_within_the_web_and_the_flange_are_none() -> None:
     assert outline_reasons(TEE, *inside, *flange)[0] == ""
 
 
+def test_a_hook_that_turns_out_of_the_web_is_none() -> None:
+    """It stays in the box round the section, under the flange."""
+    hook = [(300, 100, 60), (5700, 100, 60), (5700, 100, 520)]
+    aside = [(300, 100, 60), (5700, 100, 60), (5700, 530, 60)]
+    found = []
+    for shape in (hook, aside):
+        model = ModelWithBars()
+        beam = model.beam(outline=[(float(y), float(z)) for y, z in TEE])
+        model.bars(beam, bent(shape, 100.0), diameter=25.0)
+        found.append(model.read(beam))
+        assert found[-1].reasons == ""
+    (hooked,), (straight_end,) = (one.bars for one in found)
+    assert (hooked.end_anchor, straight_end.end_anchor) == (Anchor.HOOK, Anchor.STRAIGHT)
+    assert (hooked.end, straight_end.end) == pytest.approx((5712.5, 5600.0))
+    assert "its hook leaves the concrete" in found[1].remarks
+
+
+@pytest.mark.parametrize(("rise", "fits"), [(0.0, False), (190.0, True)])
+def test_a_bent_bar_under_a_haunch_is_a_reason(rise: float, fits: bool) -> None:
+    """The soffit rises by 200 mm over the first half."""
+    deep, shallow = Outline((box(300, 0, 600),)), Outline((box(300, 200, 600),))
+    runs = (Run(0, 3000, deep, shallow), Run(3000, LENGTH, shallow))
+    bar = Curve(((50, 0, 60), (2900, 0, 60 + rise), (5900, 0, 260)))
+    found = with_runs(runs, bar)
+    assert ("outside" not in found.reasons) is fits
+
+
 @pytest.mark.parametrize(
     ("outline", "y", "z", "fits"),
     [

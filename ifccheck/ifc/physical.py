@@ -11,7 +11,13 @@ from ifccheck.beam import Bars, Stirrups
 from ifccheck.ifc.bar_findings import Findings
 from ifccheck.ifc.bar_groups import longitudinal_bars
 from ifccheck.ifc.bar_levels import leaning_with_tapers
-from ifccheck.ifc.bar_outlines import FIT_TOLERANCE, legs_outside, runs_outside
+from ifccheck.ifc.bar_outlines import (
+    FIT_TOLERANCE,
+    bends_outside,
+    legs_outside,
+    runs_outside,
+    without_hooks,
+)
 from ifccheck.ifc.bar_paths import Bools, Floats, Ints
 from ifccheck.ifc.bar_pieces import CentreLines, count_by_row
 from ifccheck.ifc.bar_rows import BarPlaces, Rows
@@ -96,7 +102,7 @@ def _along(model: Measured) -> dict[int, tuple[Bars, ...]]:
         return {}
     beam = model.rows.beam[model.pieces.row]
     leaning = leaning_with_tapers(model.places.frames, beam, model.pieces)
-    runs = find_runs(model.lines, model.pieces, leaning)
+    runs = _within_concrete(model, find_runs(model.lines, model.pieces, leaning))
     is_main = np.zeros(model.lines.count, dtype=bool)
     is_main[runs.row] = True
     _judge_others(model, is_main, leaning)
@@ -172,6 +178,17 @@ def _judge_roles(model: Measured, mask: Bools, roles: frozenset[str], text: str)
     contrary = np.array([role in roles for role in table.roles], dtype=bool)
     rows = np.flatnonzero(mask)
     model.remark(rows[contrary[table.role[model.bar[rows]]]], f"{text}: taken by its shape")
+
+
+def _within_concrete(model: Measured, runs: Runs) -> Runs:
+    """Take ends whose hooks leave the concrete as straight; what else leaves it is a reason."""
+    is_main = np.zeros(model.lines.count, dtype=bool)
+    is_main[runs.row] = True
+    leaving = bends_outside(model.places.frames, model.rows.beam, model.lines, is_main)
+    runs, unhooked, left = without_hooks(model.lines, runs, leaving)
+    model.remark(unhooked, "its hook leaves the concrete of the beam: taken as a straight end")
+    model.reason(left, OUTSIDE)
+    return runs
 
 
 def _run_outside(model: Measured, runs: Runs) -> Bools:
