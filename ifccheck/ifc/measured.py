@@ -13,7 +13,9 @@ from ifccheck.ifc.bar_findings import LISTED, Findings, name_bars
 from ifccheck.ifc.bar_paths import Floats, Ints
 from ifccheck.ifc.bar_pieces import CentreLines, Pieces, cut_into_pieces
 from ifccheck.ifc.bar_rows import BarPlaces, Rows
+from ifccheck.ifc.bar_samples import offsets, spread
 from ifccheck.ifc.bar_sizes import BarSize
+from ifccheck.ifc.equal_rows import first_of_each
 
 USUAL_YIELD = 400.0
 """Yield strength [MPa] by which bars of unknown steel are compared."""
@@ -37,12 +39,13 @@ class Measured:
 
     def names(self, bars: Ints, first: Ints, stop: Ints) -> list[str]:
         """What people call bars, those of each of several runs together."""
-        listed = bars.tolist()
-        bounds = zip(first.tolist(), stop.tolist(), strict=True)
-        runs = [list(dict.fromkeys(listed[a:b])) for a, b in bounds]
-        named = [bar for run in runs for bar in run[:LISTED]]
-        labels = iter(self.places.table.labels(np.array(named, dtype=np.intp)))
-        return [name_bars(list(islice(labels, min(LISTED, len(run)))), len(run)) for run in runs]
+        run, within = spread(stop - first)
+        bars = bars[first[run] + within]
+        distinct = np.sort(first_of_each(run, bars)[0])
+        counts = np.bincount(run[distinct], minlength=len(first))
+        rank = np.arange(len(distinct)) - offsets(counts)[run[distinct]]
+        labels = iter(self.places.table.labels(bars[distinct[rank < LISTED]]))
+        return [name_bars(list(islice(labels, min(LISTED, n))), n) for n in counts.tolist()]
 
     def size(self, row: int) -> BarSize:
         """Size of the bar of a row."""

@@ -51,19 +51,25 @@ def ratings_json(report: Report) -> str:
     """Return the whole answer as JSON; the same report gives the same text."""
     pieces: list[str] = []
     for name, value in _report(report).items():
-        pieces += (",\n" if pieces else "{\n", _text(name), ": ", *_lines(value))
+        pieces += (",\n" if pieces else "{\n", _text(name), ": ")
+        pieces += _lines(value)
     return "".join([*pieces, "\n}\n"])
 
 
-def _lines(value: Any) -> tuple[str, ...]:
+def _lines(value: Any) -> Iterator[str]:
     """A member of the whole: a list with one row a line, so that two runs can be compared.
 
     An iterator gives the rows as texts.
     """
     if not isinstance(value, list | Iterator):
-        return (_text(value),)
-    rows = ",\n".join(value if isinstance(value, Iterator) else map(_text, value))
-    return ("[\n", rows, "\n]") if rows else ("[]",)
+        yield _text(value)
+        return
+    before = "[\n"
+    for row in value if isinstance(value, Iterator) else map(_text, value):
+        yield before
+        yield row
+        before = ",\n"
+    yield "[]" if before == "[\n" else "\n]"
 
 
 def _report(report: Report) -> Data:

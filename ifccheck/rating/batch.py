@@ -31,7 +31,7 @@ from ifccheck.standards import Note, Options, Standard
 BATCH = 700
 """Most beams that are rated together"""
 
-LARGEST_BLOCK = 30_000_000
+LARGEST_BLOCK = 2**25 - 2**13
 """Bytes; beyond 32 MB glibc does not learn from a block"""
 
 
