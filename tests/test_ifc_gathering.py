@@ -397,11 +397,13 @@ def test_lists_bounds_and_complex_properties() -> None:
         a=building.entity("IfcPropertyListValue", "List", None, lengths),
         b=building.entity("IfcPropertyEnumeratedValue", "One", None, [make("IfcLabel", "x")]),
         c=building.entity("IfcPropertyBoundedValue", "Range", None, *reversed(lengths)),
+        e=building.entity("IfcPropertyBoundedValue", "AtMost", None, lengths[1]),
         d=building.entity("IfcComplexProperty", "Outer", None, "usage", [inner]),
     )
     values = context_of(building.file).properties.of(beam.id())["Set"]
     assert values["List"].value == (10.0, 20.0)
     assert values["One"].value == "x"
     assert values["Range"].value == (10.0, 20.0)
+    assert (values["AtMost"].value, values["AtMost"].number) == ((20.0,), None)
     assert values["Outer.Inner"].value is True
     assert values["Outer.Inner"].number is None

@@ -2,11 +2,15 @@
 
 from __future__ import annotations
 
+import re
 from typing import Any
 
 import pytest
+from hypothesis import given
+from hypothesis import strategies as st
 
 from ifccheck.beam import BarGroup, DescribedZone, Reinforcement, StirrupGroup
+from ifccheck.ifc.mapped import fits
 from tests.barred_beams import ModelWithBars
 
 OWN = "BeamRating_Reinforcement"
@@ -224,6 +228,12 @@ def test_names_may_hold_wildcards(place: str) -> None:
     zone = zone_of({"Bars bottom": "3-25M"}, "Office", {"bottom": place})
     assert zone.bottom == (BarGroup(3, "25M", 25.2, 500.0),)
     assert zone.origin == "Office.Bars bottom"
+
+
+@given(st.text("ab*", max_size=6), st.text("ab", max_size=8))
+def test_wildcards_are_those_of_a_regular_expression(pattern: str, name: str) -> None:
+    expected = re.fullmatch(".*".join(map(re.escape, pattern.split("*"))), name)
+    assert fits(pattern, name) == (expected is not None)
 
 
 @pytest.mark.parametrize("place", ["office.Bars bottom", "Office.Bars", "*.bottom", "Of.*", "x*.*"])

@@ -94,6 +94,11 @@ def test_top_bars_by_name_count_from_the_soffit(name: str) -> None:
     assert rows(read(TOP, name=name)) == [("top", TWO_20M, 538.95)]
 
 
+@pytest.mark.parametrize("name", ["Upper floor", "TopLevel", "roof, top", "stop", "Untere Etage"])
+def test_names_that_tell_of_storeys_tell_of_no_face(name: str) -> None:
+    assert rows(read(BOTTOM, name=name)) == [("bottom", THREE_25M, 63.9)]
+
+
 def test_bottom_and_top_bars_by_name() -> None:
     model = ModelWithBars()
     beam = model.beam()

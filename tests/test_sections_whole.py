@@ -28,6 +28,7 @@ from tests.models import (
     load,
     rate_model,
     rectangle,
+    shuffled,
     state,
     tee,
 )
@@ -228,6 +229,36 @@ def test_positions_turn_with_the_placement(tmp_path: Path) -> None:
     assert left["utilisation"] < 0.9 * right["utilisation"]
     assert left["utilisation"] == pytest.approx(mirrored_left["utilisation"], rel=1e-9)
     assert right["utilisation"] == pytest.approx(mirrored_right["utilisation"], rel=1e-9)
+
+
+@pytest.mark.parametrize(
+    "setting",
+    [
+        Setting(angle=37.0),
+        Setting(angle=37.0, turned_by="building"),
+        Setting(mirrored=True),
+        Setting(unit="inch", angle=-120.0, schema="IFC4X3"),
+    ],
+)
+def test_a_turned_building_and_another_order_change_nothing(
+    setting: Setting, tmp_path: Path
+) -> None:
+    """Pieces that are alike from either end, so that it does not matter which is the start."""
+    middle = replace(BOTTOM, start=1000.0, end=LENGTH - 1000.0, depth=490.0)
+    plain = rated(tmp_path / "plain", written(Setting(), PLAIN, BOTTOM, middle, TOP), text())
+    data = written(setting, PLAIN, BOTTOM, middle, TOP)
+    for number, model in enumerate((data, shuffled(data, 7))):
+        answer = rated(tmp_path / str(number), model, text())
+        for name in ("FlexureSagging", "FlexureHogging"):
+            one, other = state(plain, name), state(answer, name)
+            assert other["utilisation"] == pytest.approx(one["utilisation"], rel=1e-6)
+
+
+def test_a_body_that_is_turned_in_its_placement_is_a_reason(tmp_path: Path) -> None:
+    setting = Setting(angle=37.0, turned_by="bodies")
+    answer = rated(tmp_path, written(setting, PLAIN, BOTTOM, TOP), text())
+    assert answer["verdict"] == "not rated"
+    assert "none is its own axis" in telling(answer)
 
 
 def test_rows_that_do_not_fit_are_a_reason(tmp_path: Path) -> None:

@@ -27,6 +27,10 @@ FACE_WORDS: dict[Face, frozenset[str]] = {
     ),
 }  # fmt: skip
 """Words in the name, description or kind of a definition that tell where its bars lie"""
+PLACE_WORDS = frozenset(
+    {"floor", "storey", "story", "level", "roof", "slab", "deck", "geschoss", "etage", "verdieping"}
+)
+"""Words beside which an upper or a lower one may be that of the building"""
 _WORDS = re.compile(r"[^\W\d_]+")
 _HUMP = re.compile(r"(?<=[^\W\d_A-Z])(?=[A-Z])")
 
@@ -187,7 +191,9 @@ def _needed(entity: Entity, name: str, why: str) -> float:
 
 
 def _face_in(words: str) -> Face | None:
-    """The one face that words name; None where they name none, or both."""
+    """The one face that words name; None where they name none, or both, or may mean a storey."""
     found = {word.lower() for word in _WORDS.findall(_HUMP.sub(" ", words))}
+    if found & PLACE_WORDS:
+        return None
     named: list[Face] = [face for face, known in FACE_WORDS.items() if found & known]
     return named[0] if len(named) == 1 else None
