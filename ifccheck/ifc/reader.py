@@ -57,6 +57,10 @@ def read_model(
         ) from error
 
 
+MOST_NAMED = 100
+"""Beams of one GlobalId that are named"""
+
+
 def _read(
     opened: OpenedModel,
     mapping: Mapping[str, str],
@@ -116,14 +120,19 @@ def _identified(products: Sequence[Product]) -> Iterator[tuple[Product, Identity
 
 
 def _repeats(products: Sequence[Product]) -> Iterator[Remark]:
-    counts = Counter(product.guid for product in products)
-    for guid, count in counts.items():
-        if count > 1:
+    sharing: dict[str, list[Product]] = {}
+    for product in products:
+        sharing.setdefault(product.guid, []).append(product)
+    for guid, beams in sharing.items():
+        if len(beams) > 1:
+            named = [f"{beam.name} (#{beam.step_id})".strip() for beam in beams[:MOST_NAMED]]
+            rest = len(beams) - len(named)
+            more = f" and {rest} more" if rest else ""
             yield Remark(
                 None,
                 STAGE,
-                f"{count} beams share the GlobalId {guid}: from the second on they are "
-                f"called {guid}~2 and so forth",
+                f"{len(beams)} beams share the GlobalId {guid}: {', '.join(named)}{more}; from the"
+                f" second on they are called {guid}~2 and so forth",
                 "doubt",
             )
 
