@@ -97,8 +97,8 @@ def case_effects(
     Notes
     -----
     A moment load lowers the moment by its value from left to right: positive is anticlockwise
-    with x to the right and z up. EI is constant along a span; moment and shear of spans that
-    are statically determinate do not depend on that.
+    with x to the right and z up. EI is constant along a span, on which moment and shear of spans
+    that are statically determinate do not depend; see ``stiffness`` for the others.
 
     References
     ----------
@@ -136,8 +136,7 @@ def solve(spans: SpanTable, loads: LoadTable, cases: int) -> Solved:
 def effects_at(solved: Solved, stations: StationTable, deflections: bool = True) -> CaseEffects:
     """Moment, shear and deflection of every case at every station; see ``case_effects``."""
     spans, start, totals = solved.spans, solved.start, solved.totals
-    cases = len(totals.force)
-    left = sum_brackets(solved.loads, _sections(spans, stations), cases, integrals=deflections)
+    left = _left_of(solved, stations, deflections)
     moment, shear = _along(spans, stations, start, left)
     first = stations.first_rows(len(spans.start))
     return CaseEffects(
@@ -149,6 +148,31 @@ def effects_at(solved: Solved, stations: StationTable, deflections: bool = True)
         reactions=np.stack([start.reaction, totals.force - start.reaction], axis=-1),
         end_moments=_end_moments(spans, solved.loads, start, totals),
     )
+
+
+def moments_at(solved: Solved, stations: StationTable) -> Floats:
+    """Moment of every case at every station, however small [N*mm] (K, N)."""
+    return _along(solved.spans, stations, solved.start, _left_of(solved, stations, False))[0]
+
+
+def with_end_moments(solved: Solved, start: Floats, end: Floats, varying: Bools) -> Solved:
+    """The same spans with more moment at their ends [N*mm] (K, B).
+
+    Deflections are those of one stiffness along the span: of ``varying`` spans (B) they are nan.
+    """
+    turned = np.where(varying, np.nan, 0.0)
+    constants = _Start(
+        reaction=solved.start.reaction + (end - start) / solved.spans.length,
+        moment=solved.start.moment + start,
+        slope=solved.start.slope + turned,
+        deflection=solved.start.deflection + turned,
+    )
+    return replace(solved, start=constants)
+
+
+def _left_of(solved: Solved, stations: StationTable, integrals: bool) -> Brackets:
+    sections, cases = _sections(solved.spans, stations), len(solved.totals.force)
+    return sum_brackets(solved.loads, sections, cases, integrals=integrals)
 
 
 def _within_spans(spans: SpanTable, loads: LoadTable) -> LoadTable:

@@ -11,6 +11,7 @@ import numpy as np
 from ifccheck.analysis.loads import LoadTable, join_loads, load_table, self_weight_lines
 from ifccheck.analysis.spans import FREE, SpanTable, span_table
 from ifccheck.analysis.stations import SAME_PLACE, StationTable
+from ifccheck.analysis.stiffness import Curvature
 from ifccheck.beam import SELF, Anchor, Case, Nature
 from ifccheck.mechanics.arrays import (
     ANCHOR_FULL,
@@ -32,10 +33,12 @@ from ifccheck.rating.runs import (
     along_axis,
     chords_at,
     profile_of,
+    run_at,
     run_table,
     sections_at,
     weighed_parts,
 )
+from ifccheck.rating.stiffness import curvature_of
 from ifccheck.rating.subject import Subject
 
 END_COVER = 100.0
@@ -113,6 +116,8 @@ class Frame:
     faces: Floats
     """(B, 2)"""
     loads: LoadTable
+    curvature: Curvature | None
+    """Of beams whose stiffness varies along them, where their moments depend on it"""
     self_case: int
     """Row of the case that self weight makes"""
     checked: Floats
@@ -145,6 +150,8 @@ def frame_of(subjects: Sequence[Subject], cases: Sequence[Case]) -> Frame:
     weight = _self_weight(body, spans, row_of_case[SELF], unit_weights)
     members = members_of(subjects, sections)
     lengths = np.array([subject.beam.length for subject in subjects])
+    loads = join_loads(stated, weight)
+    bodies = [subject.beam.runs for subject in subjects]
     return Frame(
         members=members,
         runs=runs,
@@ -152,7 +159,8 @@ def frame_of(subjects: Sequence[Subject], cases: Sequence[Case]) -> Frame:
         losses=loss_table(subjects),
         spans=spans,
         faces=np.array([subject.faces for subject in subjects]),
-        loads=join_loads(stated, weight),
+        loads=loads,
+        curvature=curvature_of(bodies, spans, loads, members, runs),
         self_case=row_of_case[SELF],
         checked=checked_stretch(members, spans, lengths),
         disturbed=disturbed_stretches(subjects),
@@ -298,7 +306,7 @@ def make_station_arrays(
     """
     area, spacing, strength = _stirrups_at(beam, x, side, frame.zones)
     runs = frame.runs
-    row = _row_at(beam, x, side, runs.beam, runs.start)
+    row = run_at(runs, beam, x, side)
     members, section = sections_at(frame.members, runs, row, x)
     return members, Stations(
         beam=beam,
@@ -351,16 +359,6 @@ def within(stations: StationTable, stretch: Floats) -> StationTable:
 def _between(x: Floats, faces: Floats) -> Bools:
     tolerance = 1e-6
     return np.asarray((x >= faces[:, 0] - tolerance) & (x <= faces[:, 1] + tolerance))
-
-
-def _row_at(beam: Ints, x: Floats, side: Ints, row_beam: Ints, row_start: Floats) -> Ints:
-    """Row of a table sorted by beam and start that holds each station; the first row of a
-    beam also serves what lies before it."""
-    reach = 2.0 * (np.max(np.abs(row_start)) + np.max(np.abs(x)) + 1.0)
-    key = row_beam * reach + row_start
-    place = np.searchsorted(key, beam * reach + x + 1e-6 * np.sign(side), side="right") - 1
-    first = np.searchsorted(row_beam, beam)
-    return np.asarray(np.maximum(place, first), dtype=np.intp)
 
 
 def _losses_at(beam: Ints, x: Floats, side: Ints, losses: LossTable) -> Floats:

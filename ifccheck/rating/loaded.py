@@ -21,6 +21,7 @@ from ifccheck.analysis.stations import (
     make_stations,
     places,
 )
+from ifccheck.analysis.stiffness import with_varying_stiffness
 from ifccheck.beam import Case, Combination
 from ifccheck.mechanics.arrays import Bools, Floats, Members, Stations
 from ifccheck.rating.assembly import Frame, make_station_arrays, within
@@ -68,7 +69,7 @@ def loaded(
     """
     factors = factor_array(combinations, cases)
     critical = _critical_sections(frame, standard)
-    solved = solve(frame.spans, frame.loads, len(cases))
+    solved = solved_frame(frame, len(cases))
     effects, stations = _effects(frame, solved, critical, factors)
     acting = demands(
         effects,
@@ -81,6 +82,12 @@ def loaded(
     elements = distinct_elements(effects, acting, stations.beam)
     ask_nothing(elements, disturbed)
     return Loaded(frame, solved, stations, *arrays, effects, factors, acting, elements, disturbed)
+
+
+def solved_frame(frame: Frame, cases: int) -> Solved:
+    """Reactions and end moments of every case on every beam."""
+    solved = solve(frame.spans, frame.loads, cases)
+    return with_varying_stiffness(solved, frame.curvature) if frame.curvature else solved
 
 
 def _critical_sections(frame: Frame, standard: Standard) -> Floats:

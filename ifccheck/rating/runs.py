@@ -125,6 +125,15 @@ def _rises(run: Run, last: Outline) -> tuple[float, float]:
     return (last_top - top) / length, (last_soffit - soffit) / length
 
 
+def run_at(runs: RunTable, beam: Ints, x: Floats, side: Ints | int = 0) -> Ints:
+    """Row of the run that holds each station (N); a beam's first also holds what lies before."""
+    reach = 2.0 * (np.max(np.abs(runs.start)) + np.max(np.abs(x)) + 1.0)
+    key = runs.beam * reach + runs.start
+    place = np.searchsorted(key, beam * reach + x + 1e-6 * np.sign(side), side="right") - 1
+    first = np.searchsorted(runs.beam, beam)
+    return np.asarray(np.maximum(place, first), dtype=np.intp)
+
+
 def sections_at(members: Members, runs: RunTable, row: Ints, x: Floats) -> tuple[Members, Ints]:
     """Members with a section for each station in a taper, and the section of each station.
 

@@ -10,11 +10,12 @@ import numpy as np
 from ifccheck.analysis.combinations import factor_array
 from ifccheck.analysis.effects import Effects, case_share, combine
 from ifccheck.analysis.loads import LoadTable
-from ifccheck.analysis.statics import CaseEffects, case_effects
+from ifccheck.analysis.statics import CaseEffects, effects_at
 from ifccheck.beam import SELF, Case
 from ifccheck.mechanics.arrays import Floats, Ints
 from ifccheck.rating.assembly import frame_of
 from ifccheck.rating.batch import Batch
+from ifccheck.rating.loaded import solved_frame
 
 
 @dataclass(frozen=True, slots=True)
@@ -54,7 +55,7 @@ def arising(batch: Batch, cases: Sequence[Case]) -> Arising:
         The cases (K) that they were rated for, in the same order.
     """
     frame = frame_of(batch.subjects, cases)
-    effects = case_effects(frame.spans, frame.loads, batch.stations, len(cases), deflections=False)
+    effects = effects_at(solved_frame(frame, len(cases)), batch.stations, deflections=False)
     factors = factor_array(batch.places.combinations, cases)
     weight = [row for row, case in enumerate(cases) if case.name == SELF]
     return Arising(

@@ -33,6 +33,7 @@ from ifccheck.frame.reactions import loaded_from_side, unknown_reactions
 from ifccheck.frame.slab_flanges import Asked, counted
 from ifccheck.frame.spans import Standing, stand_alone
 from ifccheck.rating.shape import deep_member, shape_reasons
+from ifccheck.rating.stiffness import varies
 from ifccheck.rating.subject import Subject, Unrated
 from ifccheck.standards import Standard
 from ifccheck.subjects.concrete import Concrete, concrete_of
@@ -43,6 +44,10 @@ Row = TypeVar("Row", Load, Remark)
 
 _CRANE = "crane loads stand where the brief puts them: they are not moved, and carry no impact"
 NO_STATEMENT = BeamStatement()
+_VARYING_STIFFNESS = (
+    "moments of its fixed ends are those of a span whose stiffness varies with its outline"
+    " (concrete uncracked, steel left out)"
+)
 _THROUGH_THE_WEB = "loads are assumed to act through the web: torsion is not checked"
 
 
@@ -174,6 +179,9 @@ def _judge_standing(
         overhang = span_reason(statement, beam, supports)
         findings.reasons += [overhang] if overhang else standing.reasons
         findings.remarks += standing.remarks
+        kinds = {end.kind for end in supports}
+        if varies(beam.runs) and "fixed" in kinds and "free" not in kinds:
+            findings.remarks.append(Remark(beam.key, "demand", _VARYING_STIFFNESS, "assumption"))
         findings.reasons += shape_reasons(
             beam.runs, standing.span, standing.faces, sources.standard
         )
