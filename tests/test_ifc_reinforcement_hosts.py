@@ -159,12 +159,6 @@ def test_loose_bars_elsewhere_are_not_noticed(made: Model) -> None:
     assert model.read(beam).sources == ()
 
 
-def test_a_mesh_is_a_reason(made: Model) -> None:
-    model, beam = made
-    model.aggregate(beam, [model.root("IfcReinforcingMesh")])
-    assert "a mesh is not read yet" in model.read(beam).reasons
-
-
 def test_proxies_of_a_bar_type_are_bars(made: Model) -> None:
     model, beam = made
     curve = straight(50, 5950, 0, 60)

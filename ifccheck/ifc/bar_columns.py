@@ -7,7 +7,7 @@ from dataclasses import dataclass, field
 
 import numpy as np
 
-from ifccheck.ifc.bar_data import BarData, Data, Swept
+from ifccheck.ifc.bar_data import NOTHING_SAID, BarData, Data, Said, Swept
 from ifccheck.ifc.bar_paths import Floats, Ints
 from ifccheck.ifc.bar_samples import PathTable, tabulate
 from ifccheck.ifc.bar_shapes import BarShapes, Strand
@@ -100,9 +100,11 @@ class BarReaders:
         """All centre lines that were read."""
         return self.swept_paths.with_more(tabulate(self.shapes.paths))
 
-    def settled(self, product: Entity, name: str, swept: Swept | None) -> Data:
+    def settled(
+        self, product: Entity, name: str, swept: Swept | None, said: Said = NOTHING_SAID
+    ) -> Data:
         """Return what is settled of a bar; raises UnreadableError."""
-        data = self.data.of(product, product.id(), name, swept)
+        data = self.data.of(product, product.id(), name, swept, said)
         if data.size < 0:
             raise UnreadableError("is of a diameter that nobody states")
         return data

@@ -70,7 +70,9 @@ class Data:
 
 
 NO_HINTS, NO_TYPE = _Hints(), _Type()
-NOTHING_SAID = (None, None, None, None)
+Said = tuple[str | None, float | None, float | None, str | None]
+"""Grade, diameter and area in units of the model, and role."""
+NOTHING_SAID: Said = (None, None, None, None)
 Swept = tuple[float, float]
 """What the diameter of a body is at least and at most [mm]; both are the same but for polygons."""
 Related = tuple[int | None, int | None, tuple[int, ...] | None]
@@ -90,13 +92,18 @@ class BarData:
         self._material_data: dict[int | None, Yields] = {}
         self._names: dict[str, str] = {}
 
-    def of(self, product: Entity, step_id: int, name: str, swept: Swept | None) -> Data:
-        """Return what is settled of a bar."""
+    def of(
+        self,
+        product: Entity,
+        step_id: int,
+        name: str,
+        swept: Swept | None,
+        said: Said = NOTHING_SAID,
+    ) -> Data:
+        """Return what is settled of a bar; ``said`` is what is said of one that is no bar."""
         argument = product.get_argument
         if product.is_a() == "IfcReinforcingBar":
             said = (argument(8), argument(9), argument(10), argument(12))
-        else:
-            said = NOTHING_SAID
         related = self.related(step_id)
         key = (said, argument(4), self.size_in(name), *related, swept)
         data = self._settled.get(key)
@@ -129,7 +136,7 @@ class BarData:
     def _settle(
         self,
         step_id: int,
-        said: tuple[str | None, float | None, float | None, str | None],
+        said: Said,
         object_type: str | None,
         named: str,
         type_id: int | None,

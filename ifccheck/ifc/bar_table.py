@@ -9,8 +9,9 @@ from typing import TypeVar
 import numpy as np
 
 from ifccheck.ifc.bar_columns import BarColumns, BarReaders, Gathered, concatenated
+from ifccheck.ifc.bar_helices import TOLD, find_helices, long_lines
 from ifccheck.ifc.bar_paths import Bools, Floats, Ints
-from ifccheck.ifc.bar_samples import PathTable
+from ifccheck.ifc.bar_samples import PathTable, offsets, spread, tabulate
 from ifccheck.ifc.bar_shapes import FARTHEST
 from ifccheck.ifc.bar_sizes import BarSize, Grade
 from ifccheck.ifc.context import Context
@@ -87,13 +88,44 @@ def gather_bars(context: Context, bars: Ints, statements: StepTable | None = Non
     by_id = context.file.by_id
     if statements is None:
         found = read_thoroughly(readers, ((p, by_id(i)) for p, i in enumerate(bars.tolist())))
-        return _within_reach(_table(readers, bars, found))
+        return _unwound(_within_reach(_table(readers, bars, found)))
     plain, left = read_plain_bars(readers, statements, bars)
     others = read_thoroughly(readers, ((p, by_id(int(bars[p]))) for p in left.tolist()))
     columns = concatenated(plain.columns, others.columns)
     unreadable = plain.unreadable | others.unreadable
     notes = plain.notes | others.notes
-    return _within_reach(_table(readers, bars, Gathered(columns, unreadable, notes)))
+    return _unwound(_within_reach(_table(readers, bars, Gathered(columns, unreadable, notes))))
+
+
+def _unwound(table: BarTable) -> BarTable:
+    """The table with the turns of spirals in the place of the spirals."""
+    if not len(long_lines(table.paths)):
+        return table
+    paths, line = table.paths, table.paths.line[table.path]
+    thick = np.array([size.diameter for size in table.sizes], dtype=float)
+    diameter = np.zeros(len(paths.first) - 1)
+    np.maximum.at(diameter, line, thick[table.size[table.bar]])
+    turns = find_helices(paths, diameter)
+    if not turns:
+        return table
+    rings = tabulate([ring for one in turns.values() for ring in one])
+    count = np.ones(len(diameter), dtype=np.intp)
+    count[list(turns)] = [len(one) for one in turns.values()]
+    begin = np.zeros(len(diameter), dtype=np.intp)
+    begin[list(turns)] = len(paths) + offsets(count[list(turns)])[:-1]
+    row, within = spread(count[line])
+    is_turn = np.isin(line, list(turns))
+    path = np.where(is_turn[row], begin[line][row] + within, table.path[row])
+    spirals = table.product[table.bar[is_turn]].tolist()
+    return replace(
+        table,
+        paths=paths.with_more(rings),
+        bar=table.bar[row],
+        path=path,
+        turn=table.turn[row],
+        translation=table.translation[row],
+        notes={**table.notes, **dict.fromkeys(spirals, TOLD)},
+    )
 
 
 def _within_reach(table: BarTable) -> BarTable:

@@ -8,8 +8,10 @@ from dataclasses import replace
 import numpy as np
 
 from ifccheck.beam import Reason, Reinforcement, Remark
+from ifccheck.ifc.bar_columns import name_of
 from ifccheck.ifc.bar_findings import Findings
 from ifccheck.ifc.bar_hosts import BarHosts, Hosts
+from ifccheck.ifc.bar_meshes import MESH
 from ifccheck.ifc.bar_paths import Ints
 from ifccheck.ifc.bar_rows import BarPlaces, Rows
 from ifccheck.ifc.bar_table import BarTable, gather_bars
@@ -18,7 +20,7 @@ from ifccheck.ifc.beam_frames import BeamFrames, make_frames
 from ifccheck.ifc.context import BeamFrame, Context
 from ifccheck.ifc.couplers import Couplers
 from ifccheck.ifc.described import read_described
-from ifccheck.ifc.entity import Entity, label
+from ifccheck.ifc.entity import Entity
 from ifccheck.ifc.physical import Physical, reduce_bars
 from ifccheck.ifc.sections import read_sections
 from ifccheck.ifc.step_table import StepTable
@@ -68,12 +70,11 @@ def _physical(
     frames = make_frames(hosts)
     findings = Findings([frame.guid for frame in hosts.values()])
     finder = Hosts(context.file, context.relations, hosts)
-    _tell_meshes(context, finder, frames, findings)
     bars, ties = _tied_bars(context, finder, statements)
     table = gather_bars(context, bars, statements)
     places = BarPlaces(table, frames, Couplers(context))
     found = find_rows(places, ties.take(table.product))
-    _tell_unreadable(table, bars, ties, frames, findings)
+    _tell_unreadable(context, table, bars, ties, frames, findings)
     _tell_astray(places, found.astray, findings)
     _tell_notes(places, found.tied, findings)
     physical = reduce_bars(places, found.tied, findings)
@@ -88,9 +89,18 @@ def _tied_bars(
 ) -> tuple[Ints, BarHosts]:
     """Bars that may lie in one of the beams, by STEP ids, and how each is tied."""
     bars = _all_bars(context, statements)
+    bars = np.concatenate((bars, _tied_meshes(context, finder)))
     ties = finder.of_all(bars)
     near = ~ties.tied("elsewhere")
     return bars[near], ties.take(near)
+
+
+def _tied_meshes(context: Context, finder: Hosts) -> Ints:
+    """STEP ids of meshes of beams; one that no relation ties is that of a slab or a wall."""
+    meshes = np.array([mesh.id() for mesh in _instances(context, MESH)], dtype=np.intp)
+    if not len(meshes):
+        return meshes
+    return meshes[finder.of_all(meshes).tied("part", "beside")]
 
 
 def _all_bars(context: Context, statements: StepTable | None) -> Ints:
@@ -108,22 +118,25 @@ def _all_bars(context: Context, statements: StepTable | None) -> Ints:
     return np.concatenate((bars, typed[~np.isin(typed, bars)]))
 
 
-def _tell_meshes(context: Context, finder: Hosts, frames: BeamFrames, findings: Findings) -> None:
-    index = frames.index()
-    for entity in _instances(context, "IfcReinforcingMesh"):
-        host = finder.of(entity.id())
-        if host.tie == "part" or len(host.beams) == 1:
-            for beam in host.beams:
-                findings.reason(index[beam], f"{label(entity)}: a mesh is not read yet")
-
-
 def _tell_unreadable(
-    table: BarTable, bars: Ints, ties: BarHosts, frames: BeamFrames, findings: Findings
+    context: Context,
+    table: BarTable,
+    bars: Ints,
+    ties: BarHosts,
+    frames: BeamFrames,
+    findings: Findings,
 ) -> None:
     index = frames.index()
     for bar, text in table.unreadable.items():
-        for beam in ties.of(bar).beams:
-            findings.reason(index[beam], text, (f"#{bars[bar]}",))
+        beams = ties.of(bar).beams
+        name = _name_of(context.file.by_id(bars.item(bar))) if beams else ""
+        for beam in beams:
+            findings.reason(index[beam], text, (name,))
+
+
+def _name_of(bar: Entity) -> str:
+    """What people call a bar that could not be read."""
+    return f"{name_of(bar)} #{bar.id()}".strip()
 
 
 def _tell_notes(places: BarPlaces, tied: Rows, findings: Findings) -> None:

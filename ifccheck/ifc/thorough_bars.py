@@ -16,8 +16,10 @@ from ifccheck.ifc.bar_columns import (
     thinnest,
     what_is_wrong,
 )
-from ifccheck.ifc.bar_data import Data
-from ifccheck.ifc.entity import ILL_TYPED, Entity, UnreadableError
+from ifccheck.ifc.bar_data import NOTHING_SAID, Data
+from ifccheck.ifc.bar_meshes import MESH, Wires, wires_of
+from ifccheck.ifc.bar_shapes import Strand
+from ifccheck.ifc.entity import ILL_TYPED, Entity, UnreadableError, get
 
 
 def read_thoroughly(readers: BarReaders, products: Iterable[tuple[int, Entity]]) -> Gathered:
@@ -47,10 +49,31 @@ class _Bars:
     def add(self, place: int, product: Entity) -> None:
         """Add one product; raises UnreadableError."""
         readers = self._readers
-        strands = readers.shapes.of(product.get_argument(6))
-        outer, move = _placement(readers, product.get_argument(5))
+        shape = product.get_argument(6)
+        if shape is None:
+            raise UnreadableError(_without_shape(readers, product))
+        strands = readers.shapes.of(shape)
+        placed = _placement(readers, product.get_argument(5))
+        if product.is_a() == MESH:
+            of_type = _type_of(readers, product)
+            units, paths = readers.context.units, readers.shapes.paths
+            wires = wires_of(product, of_type, strands, paths, units)
+        else:
+            wires = [Wires(strands, NOTHING_SAID)]
         name = name_of(product)
-        data = readers.settled(product, name, thinnest(strands))
+        data = [readers.settled(product, name, thinnest(one.strands), one.said) for one in wires]
+        for one, datum in zip(wires, data, strict=True):
+            self._add(place, placed, name, datum, one.strands)
+
+    def _add(
+        self,
+        place: int,
+        placed: tuple[int, Sequence[float]],
+        name: str,
+        data: Data,
+        strands: Sequence[Strand],
+    ) -> None:
+        outer, move = placed
         bar = len(self._bars)
         self._bars.append((place, outer))
         self._names.append(name)
@@ -59,8 +82,8 @@ class _Bars:
         if note := noted(strands):
             self.notes[place] = note
         for strand in strands:
-            inner = readers.inner.index(strand.matrix)
-            self._strands.append((bar, readers.path(strand), inner))
+            inner = self._readers.inner.index(strand.matrix)
+            self._strands.append((bar, self._readers.path(strand), inner))
 
     def columns(self) -> BarColumns:
         """All bars that were added."""
@@ -69,6 +92,21 @@ class _Bars:
         move = np.array(self._moves, dtype=float).reshape(-1, 3)
         own = np.arange(len(product))
         return BarColumns(product, own, self._names, own, self._data, outer, move, bar, path, inner)
+
+
+def _type_of(readers: BarReaders, product: Entity) -> Entity | None:
+    type_id = readers.context.relations.types.get(product.id())
+    return None if type_id is None else readers.context.file.by_id(type_id)
+
+
+def _without_shape(readers: BarReaders, product: Entity) -> str:
+    """What to say of a bar that is not drawn."""
+    if product.is_a() == MESH:
+        return "is a mesh that is not drawn: where its wires lie is not told"
+    of_type = _type_of(readers, product)
+    if of_type is not None and get(of_type, "RepresentationMaps"):
+        return "is not drawn: only its type has a shape, and where that stands is not told"
+    return "has no shape"
 
 
 def _placement(readers: BarReaders, placement: Entity | None) -> tuple[int, Sequence[float]]:
