@@ -47,6 +47,24 @@ def test_a_cage_that_nothing_ties_is_that_of_the_beam_it_lies_in() -> None:
     assert read[0][1][0].legs == 2
 
 
+TAILS = [(60, 90, 300), (60, 90, 60), (5940, 90, 60), (5940, 90, 300)]
+PIN = [(1500, -90, 300), (60, -90, 300), (60, 90, 300), (1500, 90, 300)]
+
+
+@pytest.mark.parametrize("corners", [TAILS, [(x, y, 600 - z) for x, y, z in TAILS], TAILS[1:], PIN])
+def test_bars_with_bends_are_found_as_straight_ones_are(corners: list[Any]) -> None:
+    read = []
+    for tied in (True, False):
+        model = ModelWithBars()
+        beam = model.beam()
+        bars = loose(model, beam, bent(corners, 60.0), diameter=12.0)
+        if tied:
+            model.aggregate(beam, bars)
+        read.append(steel(model, beam))
+    assert read[0] == read[1]
+    assert read[0][0]
+
+
 def test_each_beam_has_the_bars_that_lie_in_it() -> None:
     model = ModelWithBars()
     beam, other = model.beam(), model.beam(origin=(0.0, 1000.0, 0.0))

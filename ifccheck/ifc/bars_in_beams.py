@@ -10,8 +10,9 @@ from ifccheck.ifc.bar_paths import Bools, Floats, Ints
 from ifccheck.ifc.bar_pieces import CentreLines, Pieces, count_by_row, cut_into_pieces
 from ifccheck.ifc.bar_rows import BarPlaces, Rows
 from ifccheck.ifc.beam_frames import BeamFrames, part_inside
+from ifccheck.ifc.many_vectors import sizes
 from ifccheck.ifc.outline_points import inside_outlines
-from ifccheck.ifc.stirrup_sets import is_closed, lies_square, upright_legs
+from ifccheck.ifc.stirrup_sets import HOOKED_MEETING, is_closed, lies_square, upright_legs
 
 INSIDE_TOLERANCE = 5.0
 """A bar may lie outside the box of its beam by this [mm] and still lie in it."""
@@ -63,12 +64,13 @@ def _sum(pieces: Pieces, lengths: Floats, count: int) -> Floats:
 
 
 def _kinds(lines: CentreLines, pieces: Pieces) -> tuple[Bools, Bools, Bools]:
-    """Whether each strand is closed, lies square to the beam, and has a leg."""
+    """Whether each strand ends where it begins, lies square to the beam, and has a leg."""
     if not lines.count:
         nothing = np.zeros(0, dtype=bool)
         return nothing, nothing, nothing
-    closed = is_closed(lines, pieces)
-    legs = count_by_row(pieces.row, upright_legs(pieces, closed), lines.count)
+    legs = count_by_row(pieces.row, upright_legs(pieces, is_closed(lines, pieces)), lines.count)
+    between = lines.points[lines.first[:-1]] - lines.points[lines.first[1:] - 1]
+    closed: Bools = sizes(between) <= HOOKED_MEETING * lines.diameter
     return closed, lies_square(lines), legs > 0
 
 
