@@ -89,6 +89,20 @@ def test_a_bar_that_runs_on_through_several_beams_is_one_of_each() -> None:
         assert (bars.start, bars.end) == pytest.approx((-number * LENGTH, (4 - number) * LENGTH))
 
 
+def test_a_bar_of_the_next_beam_drawn_in_its_own_takes_nothing_from_a_beam() -> None:
+    """The bars of a cantilever run on over the support, on the axis of those of the span."""
+    read = []
+    for reach in (0.0, 1500.0):
+        model = ModelWithBars()
+        beam, after = model.beam(), model.beam(origin=(LENGTH, 0.0, 0.0), length=2000.0)
+        loose(model, beam, along(50, LENGTH - 50, 0, 540))
+        loose(model, beam, along(LENGTH + 50 - reach, LENGTH + 1950, 0, 540))
+        read.append(steel(model, beam))
+        assert len(model.read(after).bars) == 1
+    assert read[0] == read[1]
+    assert "one runs on into it from another beam" in model.read(beam).remarks
+
+
 def test_a_bar_that_ends_in_the_joint_with_the_next_beam_is_one_of_its_own_alone() -> None:
     """Two beams in one line whose bodies overlap by the width of a column."""
     model = ModelWithBars()

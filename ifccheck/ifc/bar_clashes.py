@@ -26,6 +26,11 @@ TWICE = "lie in one another, as if modelled twice: counted once"
 LAPPED = f"lap on one axis, drawn in one another: counted together over {LAP:.0f} mm only"
 
 
+GUEST = (
+    "lie in one another, and one runs on into it from another beam: that one is not counted here"
+)
+
+
 @dataclass
 class _Counted:
     """What is counted of runs that are drawn through others; one row each (M)."""
@@ -35,6 +40,8 @@ class _Counted:
     start_hook: Bools
     end_hook: Bools
     counted: Bools
+    guest: Bools
+    """The bar runs on into the beam from another one."""
     diameter: Floats
     lean: Floats
     force: Floats
@@ -86,6 +93,7 @@ def without_clashes(model: Measured, runs: Runs, beam: Ints) -> tuple[Runs, Bool
         runs.start_hook.copy(),
         runs.end_hook.copy(),
         np.ones(len(runs.row), dtype=bool),
+        model.places.are_guests(model.rows)[runs.row],
         diameter,
         np.rint(np.abs(np.diff(runs.line[:, :, 1:], axis=1)).max(axis=(1, 2)) / LEAN),
         np.zeros(len(diameter)),
@@ -116,7 +124,10 @@ def _settle(model: Measured, runs: Runs, held: _Counted, one: int, other: int) -
     if not held.counted[[one, other]].all() or common <= least:
         return
     text = LAPPED
-    if held.is_lap(one, other):
+    if held.guest[one] != held.guest[other]:
+        text = GUEST
+        held.counted[one if held.guest[one] else other] = False
+    elif held.is_lap(one, other):
         held.cut_lap(one, other)
     elif held.is_lap(other, one):
         held.cut_lap(other, one)

@@ -41,12 +41,20 @@ class BarPlaces:
         self.table = table
         self.frames = frames
         self._couplers = couplers
+        self.guests: Rows = NO_ROWS
+        """Strands that run on into a beam from another one that holds more of them."""
         self.samples: Samples = sample(table.paths)
         self.size: Ints = table.size[table.bar]
         self.grade: Ints = table.grade[table.bar]
         """Size and grade of each strand."""
         thick = np.array([size.diameter for size in table.sizes], dtype=float)
         self.diameter: Floats = thick[self.size]
+
+    def are_guests(self, rows: Rows) -> Bools:
+        """Whether each row is one of a guest."""
+        beams = len(self.frames.ids)
+        guests = self.guests.strand * beams + self.guests.beam
+        return np.asarray(np.isin(rows.strand * beams + rows.beam, guests))
 
     def coupled(self, beam: Ints, places: Floats) -> Bools:
         """Whether a coupler stands at each place in the axes of a beam (N, 3)."""

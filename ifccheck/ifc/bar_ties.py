@@ -41,6 +41,8 @@ class Found:
     """In the beam, but tied to nothing, and not counted."""
     by_place: Rows
     """Those of ``tied`` that no relation ties, but that lie in the beam."""
+    guests: Rows
+    """Those of ``tied`` of which another beam holds more."""
     contested: Rows
     """In the beam and in another alike, where no relation tells whose they are."""
 
@@ -51,13 +53,26 @@ def find_rows(places: BarPlaces, hosts: BarHosts) -> Found:
     tied = _candidates(places, hosts, "part")
     beside, astray, shared = _beside(places, hosts)
     by_place, loose, contested = _by_place(places, hosts)
+    guests = _joined(*(_guests(places, rows) for rows in (beside, by_place)))
     return Found(
         tied=_joined(tied, beside, by_place),
         astray=astray,
         loose=loose,
         by_place=by_place,
+        guests=guests,
         contested=_joined(shared, contested),
     )
+
+
+def _guests(places: BarPlaces, rows: Rows) -> Rows:
+    """Rows of strands of which another row holds more."""
+    several = np.flatnonzero(_several(rows.strand))
+    if not len(several):
+        return NO_ROWS
+    rows = rows.take(several)
+    amount = sampled_inside(places, rows).sum(axis=1)
+    order = np.lexsort((-amount, rows.strand))
+    return rows.take(order[np.diff(rows.strand[order], prepend=-1) == 0])
 
 
 def _joined(*rows: Rows) -> Rows:

@@ -74,6 +74,7 @@ def _physical(
     table = gather_bars(context, bars, statements)
     places = BarPlaces(table, frames, Couplers(context))
     found = find_rows(places, ties.take(table.product))
+    places.guests = found.guests
     _tell_unreadable(context, table, bars, ties, frames, findings)
     _tell_astray(places, found.astray, findings)
     _tell_notes(places, found.tied, findings)
