@@ -12,10 +12,13 @@ from collections.abc import Callable
 from pathlib import Path
 from typing import Any
 
+import ifcopenshell
 import pytest
 
 from ifccheck.beam import Beam, Verdict
 from ifccheck.ifc.bar_sizes import settle_grade
+from ifccheck.ifc.section_bars import read_bars
+from ifccheck.ifc.units import read_units
 from ifccheck.pipeline import rate
 from tests import step_halls
 from tests.barred_beams import ModelWithBars, straight
@@ -184,6 +187,17 @@ def test_a_strength_without_a_declared_unit_is_never_guessed(schema: str, value:
     assert beam.concrete_strength is None
     assert beam.strength_reason is not None
     assert beam.strength_reason.blocking
+
+
+@pytest.mark.parametrize("schema", SCHEMAS)
+def test_a_strength_that_only_pascals_bear_out_is_told_to_be_taken_so(schema: str) -> None:
+    beam = with_pressure(schema, 32e6, None)
+    assert beam.concrete_strength is not None
+    assert beam.concrete_strength.value == pytest.approx(32.0)
+    assert beam.concrete_strength.source.endswith("(no unit declared, taken in SI units)")
+    declared = with_pressure(schema, 32e6, "Pa").concrete_strength
+    assert declared is not None
+    assert "no unit" not in declared.source
 
 
 def test_a_pressure_whose_unit_is_none_is_a_reason() -> None:
@@ -464,3 +478,12 @@ def test_no_default_fills_a_grade_that_cannot_be_read(
     assert (rating.verdict is not Verdict.NOT_RATED) is rated
     told = "; ".join(reason.text for reason in rating.reasons)
     assert ("yield strength of the bars cannot be read from grade 'A240'" in told) is not rated
+
+
+def test_a_grade_of_a_section_definition_that_cannot_be_read_is_no_silence() -> None:
+    make = ifcopenshell.file(schema="IFC4").create_entity
+    entity = make("IfcReinforcementBarProperties", 3 * 300e-6, "A240", None, None, 0.0195, 3.0)
+    units = read_units(Building("IFC4", "METRE").file)
+    assert math.isnan(read_bars(entity, units).yield_strength or 0.0)
+    entity.SteelGrade = "400W"
+    assert read_bars(entity, units).yield_strength == 400.0

@@ -37,7 +37,7 @@ def yields_of(sets: Sets, whose: str = "") -> Yields:
             source = f"{whose}{set_name}.{name}"
             number = value.number if value.kind == "pressure" else None
             if number is not None and LEAST_YIELD <= number <= GREATEST_YIELD:
-                stated.append(Given(number, source))
+                stated.append(Given(number, value.source(source)))
             elif text := _text(value):
                 texts.append((source, text))
     return Yields(tuple(texts), least(stated))

@@ -97,7 +97,7 @@ def _value(given: Given) -> float:
 def _stated_density(value: PropertyValue, source: str, doubts: list[str]) -> Iterator[Given]:
     density = value.number
     if density is not None and DENSITIES[0] <= density <= DENSITIES[1]:
-        yield Given(density, source)
+        yield Given(density, value.source(source))
     elif value.value:
         doubts.append(f"{source} of {value.value} is no density of concrete: not used")
 

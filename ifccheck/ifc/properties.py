@@ -56,6 +56,13 @@ class PropertyValue:
     kind: UnitKind | None = None
     form: Form = "single"
     """What several values are: a list, choices of an enumeration, bounds."""
+    declared: bool = True
+    """False where neither the value nor the project says which unit is meant: the SI unit is taken,
+    which only a value of the right size bears out."""
+
+    def source(self, place: str) -> str:
+        """Where it was found, and what had to be taken for granted."""
+        return place if self.declared else f"{place} (no unit declared, taken in SI units)"
 
     @property
     def number(self) -> float | None:
@@ -209,7 +216,8 @@ class Properties:
             return PropertyValue(None, "", None)
         measure = wrapped.is_a()
         kind, factor = self._scale(measure, unit)
-        return PropertyValue(wrapped.get_argument(0), measure, factor, kind)
+        declared = unit is not None or self._declares(kind)
+        return PropertyValue(wrapped.get_argument(0), measure, factor, kind, declared=declared)
 
     def _several(
         self, item: Entity, wrapped: tuple[Entity, ...], unit: Entity | None, form: Form
@@ -219,7 +227,10 @@ class Properties:
             return self._value(item, wrapped[0] if wrapped else None, unit)
         first = self._value(item, wrapped[0], unit)
         values = tuple(entity.get_argument(0) for entity in wrapped)
-        return PropertyValue(values, first.measure, first.factor, first.kind, form)
+        return PropertyValue(values, first.measure, first.factor, first.kind, form, first.declared)
+
+    def _declares(self, kind: UnitKind | None) -> bool:
+        return kind is None or kind in self._units.declared
 
     def _quantity(self, quantity: Entity) -> PropertyValue:
         measure = quantity.is_a()
@@ -250,11 +261,9 @@ class Properties:
             value = get(entity, name)
             if value is not None:
                 measure = "IfcPressureMeasure" if kind == "pressure" else "IfcMassDensityMeasure"
-                factor = self._units.of_measure(measure)
-                yield (
-                    name,
-                    PropertyValue(value, measure, factor, MEASURE_KINDS[measure]),
-                )
+                factor, of_kind = self._units.of_measure(measure), MEASURE_KINDS[measure]
+                declared = self._declares(of_kind)
+                yield name, PropertyValue(value, measure, factor, of_kind, declared=declared)
 
 
 class _SetsOfObject(Mapping[str, Set]):

@@ -32,6 +32,7 @@ class SectionBars:
 
     group: BarGroup
     yield_strength: float | None
+    """nan where a grade is stated that cannot be read"""
     doubts: tuple[str, ...] = ()
 
 
@@ -67,7 +68,7 @@ def read_bars(entity: Entity, units: ModelUnits) -> SectionBars:
     doubts = [taken_as(size), *_of_area(total), grade.doubt]
     return SectionBars(
         BarGroup(count, size.designation, size.diameter, size.area),
-        None if grade.strength is None else grade.strength.value,
+        None if grade.given is None else grade.given.value,
         tuple(doubt for doubt in doubts if doubt),
     )
 

@@ -153,7 +153,7 @@ def _from_value(value: PropertyValue | None, source: str) -> Iterator[Said]:
     if value is None or value.value is None:
         return
     if value.kind == "pressure":
-        yield _pressure(value, source)
+        yield _pressure(value, value.source(source))
         return
     given = value.value if isinstance(value.value, tuple) else (value.value,)
     text = ", ".join(str(each).strip() for each in given)
