@@ -313,6 +313,34 @@ def test_a_regular_polygon_pushed_along_is_a_bar(corners: int) -> None:
         reader(model).of(pushed(model, (0, 0, 0), (1, 0, 0), 900.0, profile))
 
 
+def test_an_outline_that_is_a_circle_is_a_circle() -> None:
+    model = ModelWithBars()
+    make = model.file.create_entity
+    axes = make("IfcAxis2Placement2D", make("IfcCartesianPoint", (5.0, 0.0)))
+    profile = make("IfcArbitraryClosedProfileDef", "AREA", None, make("IfcCircle", axes, 8.0))
+    (bar,) = reader(model).of(pushed(model, (0, 0, 0), (0, 0, 1), 900.0, profile))
+    assert (bar.least, bar.most) == (16.0, 16.0)
+    assert bar.path.points[0] == pytest.approx((5.0, 0.0, 0.0))
+
+
+def test_an_outline_of_two_half_circles_is_nearly_one() -> None:
+    model = ModelWithBars()
+    make = model.file.create_entity
+    axes = make("IfcAxis2Placement2D", make("IfcCartesianPoint", (0.0, 0.0)))
+    circle = make("IfcCircle", axes, 8.0)
+    halves = []
+    for ends in ((0.0, math.pi), (math.pi, 2.0 * math.pi)):
+        trims = [[make("IfcParameterValue", value)] for value in ends]
+        half = make("IfcTrimmedCurve", circle, *trims, True, "PARAMETER")
+        halves.append(make("IfcCompositeCurveSegment", "CONTINUOUS", True, half))
+    outline = make("IfcCompositeCurve", halves, False)
+    profile = make("IfcArbitraryClosedProfileDef", "AREA", None, outline)
+    (bar,) = reader(model).of(pushed(model, (0, 0, 0), (0, 0, 1), 900.0, profile))
+    assert bar.least is not None
+    assert bar.most is not None
+    assert 15.4 < bar.least <= 16.0 <= bar.most + 1e-9 < 16.5
+
+
 @given(
     st.lists(st.tuples(st.floats(-1.0, 1.0), st.floats(-1.0, 1.0)), min_size=2, max_size=4),
     st.integers(3, 10),

@@ -3,6 +3,7 @@ ifcopenshell's geometry engine and scipy where they draw the same curve."""
 
 from __future__ import annotations
 
+import contextlib
 import itertools
 import math
 from typing import Any
@@ -217,6 +218,15 @@ def test_a_part_of_a_trimmed_curve_that_may_be_counted_in_two_ways_is_a_reason()
         read_swept_path(curve, 1000.0, 3000.0, units)
 
 
+def test_a_composite_curve_up_to_the_number_of_its_segments_is_a_reason() -> None:
+    """By the standard three units of length of it, by some writers all of it."""
+    file, units, _ = opened()
+    curve = drawn(file, "composite", [(0, 0, 0), (900, 0, 0), (900, 0, 500), (0, 0, 500)])
+    with pytest.raises(UnreadableError, match="a part only"):
+        read_swept_path(curve, 0.0, 3.0, units)
+    assert path_length(read_swept_path(curve, 0.0, 3.5, units)) == pytest.approx(3.5)
+
+
 @pytest.mark.parametrize(("start", "end"), [(3.0, 1.0), (0.0, 9.0), (-1.0, 1.0), (1.0, 1.0)])
 @pytest.mark.parametrize("kind", ["polyline", "rational spline", "linear spline"])
 def test_parts_beyond_the_ends_are_reasons(kind: str, start: float, end: float) -> None:
@@ -246,6 +256,16 @@ def test_a_curve_within_itself_is_a_reason() -> None:
     curve = drawing.joined([drawn(file, "polyline", [(0, 0, 0), (100, 0, 0)])])
     curve.Segments[0].ParentCurve = curve
     with pytest.raises(UnreadableError, match="within too many"):
+        read_path(curve, units)
+
+
+def test_a_curve_of_countless_curves_is_a_reason() -> None:
+    """Eight levels of curves that name the one below ten times over: 10 ** 8 lines."""
+    file, units, drawing = opened()
+    curve = drawn(file, "polyline", [(0, 0, 0), (100, 0, 0), (0, 0, 0)])
+    for _ in range(8):
+        curve = drawing.joined([curve] * 10)
+    with pytest.raises(UnreadableError, match="too many curves"):
         read_path(curve, units)
 
 
@@ -316,6 +336,42 @@ def test_parts_of_any_curve_are_no_longer_than_what_is_drawn(
         return
     assert path_length(whole) <= drawn_length * 1.001 + 1e-3
     assert path_length(part) <= drawn_length * 1.001 + 1e-3
+
+
+VALUES = st.one_of(
+    st.none(),
+    st.booleans(),
+    st.sampled_from([0.0, -1.0, 1e-9, 1e300, math.inf, 0, 1, -5, "PARAMETER", "$"]),
+    st.floats(-1e4, 1e4),
+    st.lists(st.floats(-1e3, 1e3), max_size=3),
+    st.integers(0, 400).map(lambda number: ("entity", number)),
+)
+
+
+@given(
+    st.sampled_from(list(KINDS)),
+    st.lists(st.tuples(st.integers(0, 400), st.integers(0, 9), VALUES), min_size=1, max_size=4),
+)
+def test_whatever_a_bar_holds_there_are_bars_or_reasons(
+    kind: str, changes: list[tuple[int, int, Any]]
+) -> None:
+    """Attributes of curves, solids and points changed at random."""
+    model = ModelWithBars()
+    beam = model.beam()
+    first = max(entity.id() for entity in model.file)
+    made = [bar(model, beam, kind, curve, 12.0) for curve in (HOOKED, straight(50, 5950, 50, 60))]
+    entities = [entity for entity in model.file if entity.id() > first]
+    for number, attribute, value in changes:
+        entity = entities[number % len(entities)]
+        if isinstance(value, tuple):
+            value = entities[value[1] % len(entities)]
+        with contextlib.suppress(Exception):
+            entity[attribute % len(entity)] = value
+    model.aggregate(beam, made)
+    found = model.read(beam)
+    length = sum(bars.count * (bars.end - bars.start) for bars in found.bars)
+    assert found.bars or found.reasons
+    assert math.isfinite(length)
 
 
 def test_anchors_follow_the_curve() -> None:

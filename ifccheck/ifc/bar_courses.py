@@ -39,6 +39,8 @@ class Course:
     """What the parameter grows by in one round of a curve that closes on itself."""
     trimmed: tuple[float, float] | None = None
     """The parameters of its basis at the ends of a trimmed curve that does not begin at 0."""
+    pieces: int = 1
+    """How many curves it is put together of."""
 
     def whole(self) -> Path:
         """The whole centre line; raises UnreadableError where the curve has no ends."""
@@ -230,7 +232,7 @@ def joined_course(parts: Sequence[tuple[Course, bool]], name: str) -> Course:
         (course, agrees), (place, apart) = parts[at], found[at]
         return starts[at] + (place - course.first if agrees else course.last - place), apart
 
-    return Course(0.0, starts[-1], between, nearest)
+    return Course(0.0, starts[-1], between, nearest, pieces=sum(c.pieces for c, _ in parts))
 
 
 def joined(pieces: Sequence[Path], name: str) -> Path:

@@ -24,8 +24,8 @@ from ifccheck.ifc.placements import Matrix, rigid, unit
 from ifccheck.ifc.splines import read_spline
 from ifccheck.ifc.units import ModelUnits
 
-DEEPEST_CURVE = 16
-"""Curves within curves that are followed."""
+DEEPEST_CURVE, MOST_PIECES = 16, 10_000
+"""Curves within curves that are followed, and of how many curves one may be put together."""
 
 
 def read_path(curve: Entity, units: ModelUnits) -> Path:
@@ -42,7 +42,8 @@ def read_swept_path(
     """Read the part of a curve between two parameters; None is the curve's own end.
 
     A trimmed curve that does not begin at 0 of its basis is read as a whole only: whether its own
-    parameter begins at 0 or goes on from that of the basis is told in both ways.
+    parameter begins at 0 or goes on from that of the basis is told in both ways. So is a composite
+    curve up to the number of its segments, by which some count.
     """
     course = read_course(curve, units)
     if start is None and end is None:
@@ -56,9 +57,14 @@ def read_swept_path(
         return course.whole()
     if first == course.first and (end is None or _is_end(course, last, units)):
         return course.whole()
-    if course.trimmed is not None:
+    if course.trimmed is not None or _counts_segments(curve, last):
         raise UnreadableError(f"{label(curve)} is swept over a part only, which is not read")
     return _part(course, first, last, label(curve))
+
+
+def _counts_segments(curve: Entity, last: float) -> bool:
+    """Whether a parameter may be meant as the number of a composite curve's segments."""
+    return bool(curve.is_a("IfcCompositeCurve") and last == len(curve[0]))
 
 
 def _is_end(course: Course, end: float, units: ModelUnits) -> bool:
@@ -138,12 +144,16 @@ def _indexed_path(curve: Entity, points: Sequence[Point], segments: Sequence[Ent
 
 def _composite_curve(curve: Entity, units: ModelUnits, depth: int) -> Course:
     parts: list[tuple[Course, bool]] = []
+    pieces = 0
     for segment in curve[0]:
         parent = get(segment, "ParentCurve")
         if parent is None or segment.is_a() != "IfcCompositeCurveSegment":
             raise UnreadableError(f"{label(segment)} is a segment that is not read")
         agrees = get(segment, "SameSense") is not False
         parts.append((read_course(parent, units, depth + 1), agrees))
+        pieces += parts[-1][0].pieces
+        if pieces > MOST_PIECES:
+            raise UnreadableError(f"{label(curve)} is put together of too many curves")
     return joined_course(parts, label(curve))
 
 

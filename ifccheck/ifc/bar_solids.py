@@ -26,6 +26,8 @@ SQUARE = 0.9999
 """Cosine of the angle to its profile within which a bar is pushed straight out of it."""
 SAME_RADIUS = 0.02
 """Part of the radius by which the corners of a regular polygon may leave its circle."""
+UNEVEN = 2.1
+"""Ratio of the sides of a polygon that passes for a regular one: a side may be in two halves."""
 SAME_SURFACE = 0.03
 """Relative difference between the surfaces of a curved body, cut into facets, and of its sweep."""
 
@@ -124,12 +126,20 @@ class BarSolids:
             return np.asarray(centre), diameter, diameter
         if kind != "IfcArbitraryClosedProfileDef":
             raise UnreadableError(f"is extruded from an {kind}, which is not read")
+        outer = get(profile, "OuterCurve")
+        if outer.is_a("IfcCircle"):
+            centre = self._placements.axes(get(outer, "Position"))[:3, 3]
+            diameter = 2.0 * get(outer, "Radius") * self._units.length
+            return np.asarray(centre), diameter, diameter
+        return self._polygon(profile)
+
+    def _polygon(self, profile: Entity) -> tuple[Floats, float, float]:
         (ring,) = Profiles(self._placements).of(profile).rings
         middle = ring.mean(axis=0)
         radii = np.sqrt(((ring - middle) ** 2).sum(axis=1))
         sides = np.sqrt((np.diff(ring, axis=0, append=ring[:1]) ** 2).sum(axis=1))
         uneven = radii.max() - radii.min() > SAME_RADIUS * radii.max()
-        if uneven or sides.max() > 2.0 * sides.min():
+        if uneven or sides.max() > UNEVEN * sides.min():
             raise UnreadableError("is extruded from an outline that is no regular polygon")
         half = float(sides.max()) / 2.0
         least = math.sqrt(max(float(radii.min()) ** 2 - half**2, 0.0))
