@@ -491,9 +491,10 @@ def test_a_schedule_that_gives_cover_alone_is_told_where_another_source_is_used(
     assert remark.text.startswith("s.csv row 4: gives no bars and no stirrups, bars used instead")
 
 
-def test_a_yield_in_a_row_of_its_own_is_that_of_the_bars_there():
+@pytest.mark.parametrize("side", [None, ()])
+def test_a_yield_in_a_row_of_its_own_is_that_of_the_bars_there(side):
     steel = zone("3-25M", "2-20M", stirrups="2 legs 10M @ 250")
-    yields = DescribedZone(start=0.0, end=3000.0, bar_yield=300.0, stirrup_yield=250.0)
+    yields = DescribedZone(start=0.0, end=3000.0, side=side, bar_yield=300.0, stirrup_yield=250.0)
     laid = lay_out(beam(), (steel, yields), clear_spacing=lambda d: clear_spacing(d, 20.0))
     for each in laid.bars:
         assert (each.yield_strength and each.yield_strength.value) == (

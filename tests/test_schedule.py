@@ -3,17 +3,21 @@
 import zipfile
 from dataclasses import replace
 from datetime import datetime, time
+from itertools import pairwise
 from pathlib import Path
 
 import openpyxl
 import pytest
+from hypothesis import given
+from hypothesis import strategies as st
 
-from ifccheck.beam import Axis, Beam, Remark
+from ifccheck.beam import Axis, Beam, DescribedZone, Remark
 from ifccheck.brief.mark_ranges import expanded
 from ifccheck.brief.model import Selection
 from ifccheck.brief.quantities import read_position
 from ifccheck.brief.schedule import read_schedule
 from ifccheck.brief.selecting import parts_of
+from ifccheck.brief.zone_ranks import by_rank, speaks
 from ifccheck.brief.zones import schedule_remarks, with_schedule
 from ifccheck.errors import BriefError
 from ifccheck.notation import parse_bars, parse_stirrups
@@ -501,3 +505,36 @@ def test_a_zone_before_the_start_is_a_reason(write):
     rows = read_schedule(write([["mark", "from", "bottom"], ["B-1", "L - 8 m", "3-25M"]]))
     (reason,) = laid(rows)["B-1"].reinforcement[0].reasons
     assert reason.text == "beams.csv row 2: begins 2.00 m before the beam's start"
+
+
+PLACES = st.integers(min_value=0, max_value=12).map(lambda place: 500.0 * place)
+BARS = st.sampled_from([None, None, (), parse_bars("3-25M"), parse_bars("2-20M")])
+
+
+@st.composite
+def stretches(draw, origin):
+    """Zones that do not overlap, so that no two of them contradict each other."""
+    cuts = sorted(set(draw(st.lists(PLACES, min_size=2, max_size=5))))
+    return [
+        DescribedZone(
+            start=start,
+            end=end,
+            top=draw(BARS),
+            bottom=draw(BARS),
+            no_stirrups=draw(st.booleans()),
+            cover=draw(st.sampled_from([None, 30.0, 50.0])),
+            origin=f"{origin} {start:.0f}",
+        )
+        for start, end in pairwise(cuts)
+    ]
+
+
+@given(stretches("own"), stretches("wide"))
+def test_at_every_place_a_field_is_that_of_the_beams_own_row_or_else_of_the_others(own, wide):
+    merged = by_rank(beam("B-1"), own, wide).zones
+    for x in range(250, 6000, 500):
+        for name in ("top", "bottom", "no_stirrups", "cover"):
+            said = [[getattr(z, name) for z in zones if z.start < x < z.end and speaks(z, name)]
+                    for zones in (own, wide, merged)]  # fmt: skip
+            fields = [[value for value in each if value not in (None, False)] for each in said]
+            assert fields[2] == (fields[0] or fields[1]), (x, name)

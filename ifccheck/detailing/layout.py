@@ -218,7 +218,7 @@ def _bar_yield(segment: Segment, zone: DescribedZone) -> float | None:
 
 
 def _has_bars(zone: DescribedZone) -> bool:
-    return bool(zone.rows) or any(getattr(zone, place) is not None for place in PLACES)
+    return bool(zone.rows) or any(getattr(zone, place) for place in PLACES)
 
 
 def _stirrup_yield(segment: Segment, zone: DescribedZone) -> float | None:
