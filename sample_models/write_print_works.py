@@ -380,8 +380,8 @@ def write_runway(works: PrintWorks) -> None:
         outline = eye(360.0, 400.0, 160.0, 800.0)
         beam = works.traced(mark, place, outline, length, "Concrete f'c = 40 MPa precast")
         layers = [
-            Layer(4, "25M", 62.0, 40.0, length - 40.0, 115.0, (True, True)),
-            Layer(2, "25M", 112.0, 40.0, length - 40.0, 115.0, (True, True)),
+            Layer(4, "25M", 62.0, 40.0, length - 40.0, 115.0),
+            Layer(2, "25M", 112.0, 40.0, length - 40.0, 115.0),
             Layer(2, "15M", 742.0, 40.0, length - 40.0, 140.0),
         ]
         if i == 1:
