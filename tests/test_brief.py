@@ -360,6 +360,8 @@ FAULTS = [
     (BASIS + '[reinforcement]\nsources = ["schedule"]\n', "gives no file"),
     (BASIS + '[reinforcement]\nschedule = "none.csv"\n', "there is no file 'none.csv' beside"),
     (BASIS + '[reinforcement]\nschedule = "none.pdf"\n', "is neither .csv nor .xlsx"),
+    (BASIS + "[reinforcement]\noptional = true\n", "is for the rows of a schedule, and none is"),
+    (BASIS + CASES + LOAD.replace("B-1", "B-9..B-1") + "line = '1 kN/m'\n", "does not ascend"),
     (BASIS + "[reinforcement.properties]\ntop = 'TopBars'\n", "must be written Set.Property"),
     (BASIS + "[reinforcement.properties]\ntop = '.TopBars'\n", "must be written Set.Property"),
     # cases

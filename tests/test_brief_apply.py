@@ -134,6 +134,17 @@ def test_a_mistyped_mark_among_good_ones_is_an_error(load):
     )
 
 
+def test_every_mark_of_a_range_must_reach_a_beam(load):
+    """A mark that is missing from the range would drop its load."""
+    brief = load(entry(beams='["B-8..B-10", "K-*"]', line='"3 kN/m"'))
+    places = selections(brief)
+    assert [part.beams for part in places.values()] == [("B-8",), ("B-9",), ("B-10",), ("K-*",)]
+    found = {place: () if part.beams == ("B-9",) else ("B-1",) for place, part in places.items()}
+    with pytest.raises(BriefError, match=r"^brief.toml: loads\[1\].beams .*'B-9' reaches no beam"):
+        check_reached(brief, [found])
+    assert join(brief, (), dict.fromkeys(places, ("B-1",)))["loads[1]"] == ("B-1",)
+
+
 def test_a_mark_may_be_in_any_model_of_the_run(load):
     brief = load(entry(beams='["B-1"]', line='"3 kN/m"'))
     check_reached(brief, [{"loads[1].beams[1]": ()}, {"loads[1].beams[1]": ("B-1",)}])

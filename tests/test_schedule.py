@@ -152,6 +152,7 @@ def test_a_mark_may_be_a_range_or_one_of_several_lines(write):
         ("7..9", ("7", "8", "9")),
         ("B-1", ("B-1",)),
         ("A..B", ("A..B",)),
+        ("B-١..B-٣", ("B-١..B-٣",)),
         ("B-2*..", ("B-2*..",)),
     ],
 )
@@ -499,6 +500,29 @@ def test_equal_rows_for_many_and_for_one_are_no_remark(write):
     (described,) = laid(rows)["B-1"].reinforcement
     assert (described.remarks, described.reasons) == ((), ())
     assert [z.bottom for z in described.zones] == [parse_bars("3-25M")]
+
+
+@pytest.mark.parametrize(
+    ("start", "end", "sound"),
+    [
+        ("L - 1 m", "L - 2 m", False),
+        ("L/2 + 1 m", "L/2", False),
+        ("50 %", "0 m", False),
+        ("L/3", "L/4", False),
+        ("1 m", "1 m", False),
+        ("1 m", "L - 1 m", True),
+        ("L - 2 m", "L - 1 m", True),
+        ("50 %", "2 m", True),
+        ("L/4", "3L/4", True),
+    ],
+)
+def test_a_zone_that_has_no_length_on_any_beam_is_told(write, start, end, sound):
+    path = write([["mark", "from", "to", "bottom"], ["B-1", start, end, "3-25M"]])
+    if sound:
+        assert read_schedule(path)[0].end.text == end
+        return
+    with pytest.raises(BriefError, match=r"row 2 to: .* is not beyond from"):
+        read_schedule(path)
 
 
 def test_a_zone_before_the_start_is_a_reason(write):

@@ -9,7 +9,7 @@ from ifccheck.beam import Case, LoadKind
 from ifccheck.brief import schema
 from ifccheck.brief.entries import head
 from ifccheck.brief.faults import FaultError
-from ifccheck.brief.model import LoadEntry, Position
+from ifccheck.brief.model import LoadEntry
 from ifccheck.brief.places import Path, did_you_mean
 from ifccheck.brief.quantities import LEAST_LENGTH, Written
 
@@ -126,14 +126,9 @@ def _check_line_places(path: Path, table: schema.LoadTable) -> None:
         and (first is None) != (last is None)
     ):
         raise FaultError(path, "has a load that varies: give both from and to, or neither")
-    if first is not None and last is not None and first.comparable(last):
-        _check_order(path, first, last)
-
-
-def _check_order(path: Path, first: Position, last: Position) -> None:
-    least = 0.0 if first.relative else LEAST_LENGTH
-    if last.value - first.value < least or last.value == first.value:
-        raise FaultError((*path, "to"), f"'{last.text}' is not beyond from = '{first.text}'")
+    if first is not None and last is not None and not first.may_precede(last, LEAST_LENGTH):
+        text = f"'{last.text}' is not beyond from = '{first.text}'"
+        raise FaultError((*path, "to"), text)
 
 
 def _text(table: schema.LoadTable, amount: _Amount) -> str:

@@ -9,7 +9,7 @@ from ifccheck.units import clipped
 GREATEST_RANGE = 1000
 """Marks that one range may stand for"""
 
-_NUMBERED = re.compile(r"(?P<before>.*?)(?P<number>\d+)(?P<after>\D*)", re.DOTALL)
+_NUMBERED = re.compile(r"(?P<before>.*?)(?P<number>[0-9]+)(?P<after>[^0-9]*)", re.DOTALL)
 _HOW = "a range is written like B-201..B-204, from the lesser number to the greater"
 
 

@@ -65,9 +65,15 @@ class Position:
         """Distance from the start [mm] on a beam of a length."""
         return self.value * length + self.offset if self.relative else self.value
 
-    def comparable(self, other: Position) -> bool:
-        """Whether the values alone tell which of two places comes first, on any beam."""
-        return self.relative == other.relative and self.offset == other.offset
+    def may_precede(self, other: Position, least: float) -> bool:
+        """Whether a stretch from here to another place has a length on any beam [mm]."""
+        share, distance = self._parts()
+        further, beyond = other._parts()
+        return further > share or beyond - distance >= least
+
+    def _parts(self) -> tuple[float, float]:
+        """The share of the length, and the distance from there [mm]."""
+        return (self.value, self.offset) if self.relative else (0.0, self.value)
 
 
 @dataclass(frozen=True, slots=True)

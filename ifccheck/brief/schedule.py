@@ -11,7 +11,14 @@ from ifccheck.beam import BarGroup
 from ifccheck.brief.mark_ranges import expanded
 from ifccheck.brief.model import Position, ScheduleRow, Selection
 from ifccheck.brief.places import did_you_mean
-from ifccheck.brief.quantities import COVER, YIELD, Range, read_position, read_within
+from ifccheck.brief.quantities import (
+    COVER,
+    LEAST_LENGTH,
+    YIELD,
+    Range,
+    read_position,
+    read_within,
+)
 from ifccheck.brief.sheets import read_cells
 from ifccheck.errors import BriefError
 from ifccheck.notation import NotationError, parse_bars, parse_stirrups
@@ -111,7 +118,7 @@ def _yes_or_no(text: str) -> bool:
 
 
 def _check_order(place: str, start: Position | None, end: Position | None) -> None:
-    if start and end and start.comparable(end) and start.value >= end.value:
+    if start and end and not start.may_precede(end, LEAST_LENGTH):
         raise BriefError(f"{place} to: '{end.text}' is not beyond from = '{start.text}'")
 
 

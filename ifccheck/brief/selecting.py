@@ -22,11 +22,19 @@ def selections(brief: Brief, rows: Sequence[ScheduleRow] = ()) -> dict[str, Sele
 
 
 def parts_of(entry: Entry | ScheduleRow) -> Iterator[tuple[str, Selection]]:
-    """Each query or mark of an entry or row with its place: ``loads[3].beams[2]``."""
+    """Each query or mark of an entry or row with its place: ``loads[3].beams[2]``.
+
+    Of a range each mark stands by itself, since one that is missing would drop a load; a range in
+    a schedule, whose rows drop none, stands as a whole.
+    """
     if entry.selection.where is not None:
         yield f"{entry.place}.where", entry.selection
     for index, mark in enumerate(entry.selection.beams or (), 1):
-        yield f"{entry.place}.beams[{index}]", Selection(beams=expanded(mark))
+        place, marks = f"{entry.place}.beams[{index}]", expanded(mark)
+        if len(marks) == 1 or isinstance(entry, ScheduleRow):
+            yield place, Selection(beams=marks)
+        else:
+            yield from ((f"{place} {one}", Selection(beams=(one,))) for one in marks)
 
 
 def join(brief: Brief, rows: Sequence[ScheduleRow], found: Found) -> dict[str, tuple[str, ...]]:
