@@ -238,6 +238,35 @@ def test_a_body_of_several_tubes_is_several_bars() -> None:
     assert (bars.count, bars.area) == (2, pytest.approx(100.0 * math.pi))
 
 
+def test_stirrups_of_faces_with_hooks_round_one_corner_are_closed() -> None:
+    model = ModelWithBars()
+    beam = model.beam()
+    tail = 80.0 / math.sqrt(2.0)
+    ties = [
+        bent([(x - 6.0, 110 - tail, 560 - tail), (x - 6.0, 110, 560), (x, -110, 560), (x, -110, 40),
+              (x, 110, 40), (x + 6.0, 110, 560), (x + 6.0, 110 - tail, 560 - tail)], 20.0)
+        for x in (200.0, 350.0, 500.0)
+    ]  # fmt: skip
+    meshes = [tube(tie, 10.0, 8) for tie in ties]
+    made = [model.bar([triangulated(model.file, mesh)], 10.0, beam) for mesh in meshes]
+    model.aggregate(beam, [*made, model.bar(straight(40, 5960, 0, 60), 20.0, beam)])
+    (found,) = model.read(beam).stirrups
+    assert (found.legs, found.closed, found.spacing) == (2, True, pytest.approx(150.0))
+    assert found.leg_area == pytest.approx(25.0 * math.pi)
+
+
+@pytest.mark.parametrize("schema", ["IFC2X3", "IFC4", "IFC4X3"])
+def test_breps_of_every_schema(schema: str) -> None:
+    model = ModelWithBars(schema=schema)
+    beam = model.beam()
+    places = [tube(straight(50, 5950, y, 60), 20.0, 12) for y in (-80.0, 0.0, 80.0)]
+    made = [model.bar([faceted(model.file, mesh)], 20.0, beam) for mesh in places]
+    model.aggregate(beam, made)
+    (bars,) = model.read(beam).bars
+    assert bars.ys == pytest.approx((-80.0, 0.0, 80.0))
+    assert (bars.start, bars.end, bars.area) == pytest.approx((50.0, 5950.0, 100.0 * math.pi))
+
+
 # Pushed and swung profiles -------------------------------------------------------------------
 
 

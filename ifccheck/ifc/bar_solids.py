@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Sequence
+from collections.abc import Hashable, Sequence
 from typing import NamedTuple
 
 import numpy as np
@@ -13,11 +13,12 @@ from ifccheck.ifc.bar_courses import JOINT_GAP
 from ifccheck.ifc.bar_curves import read_path, read_swept_path
 from ifccheck.ifc.bar_paths import Floats, Path, path_length, rounded, whole_arc
 from ifccheck.ifc.bar_traces import as_point
-from ifccheck.ifc.bar_tubes import find_tubes
+from ifccheck.ifc.bar_tubes import Tube, find_tubes
 from ifccheck.ifc.entity import Entity, UnreadableError, get, several
 from ifccheck.ifc.placements import Matrix, Placements, unit
 from ifccheck.ifc.profiles import Profiles
-from ifccheck.ifc.shells import FACED, faced
+from ifccheck.ifc.shells import FACED, listed_faces
+from ifccheck.ifc.solids import Loop, facets
 from ifccheck.ifc.units import ModelUnits
 
 RECOVERED = "its axis is found from the faces of its body"
@@ -26,6 +27,8 @@ SQUARE = 0.9999
 """Cosine of the angle to its profile within which a bar is pushed straight out of it."""
 SAME_RADIUS = 0.02
 """Part of the radius by which the corners of a regular polygon may leave its circle."""
+PLACE_STEPS = 1e4
+"""Steps per mm within which bodies are equal."""
 UNEVEN = 2.1
 """Ratio of the sides of a polygon that passes for a regular one: a side may be in two halves."""
 SAME_SURFACE = 0.03
@@ -49,6 +52,7 @@ class BarSolids:
     def __init__(self, units: ModelUnits, placements: Placements) -> None:
         self._units = units
         self._placements = placements
+        self._tubes: dict[Hashable, list[Tube]] = {}
 
     def of(self, item: Entity) -> list[Drawn]:
         """Return the bars that a solid or a curve draws.
@@ -152,8 +156,23 @@ class BarSolids:
             return [Drawn(path, diameter, diameter, RECOVERED)]
         if several(item, "Voids"):
             raise UnreadableError("it has voids")
-        tubes = find_tubes(faced(item, self._units.length))
-        return [Drawn(tube.path, tube.least, tube.most, RECOVERED) for tube in tubes]
+        points, faces = listed_faces(item, self._units.length)
+        return [
+            Drawn(_moved(tube.path, points[0]), tube.least, tube.most, RECOVERED)
+            for tube in self._tubes_of(points - points[0], faces)
+        ]
+
+    def _tubes_of(self, points: Floats, faces: Sequence[Sequence[Loop]]) -> list[Tube]:
+        """The tubes of a body that begins at the origin; equal bodies are looked at once."""
+        steps = (np.rint(points * PLACE_STEPS) + 0.0).tobytes()  # without minus zeros
+        key = steps, tuple(tuple(map(tuple, loops)) for loops in faces)
+        if key not in self._tubes:
+            self._tubes[key] = find_tubes(facets(points, faces))
+        return self._tubes[key]
+
+
+def _moved(path: Path, by: Floats) -> Path:
+    return Path(tuple(as_point(np.array(point) + by) for point in path.points), path.arcs)
 
 
 def _placed(position: Matrix, place: Floats) -> tuple[float, float, float]:

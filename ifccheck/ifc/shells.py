@@ -25,6 +25,11 @@ FACED = (
 
 def faced(item: Entity, scale: float) -> Facets:
     """Return a body that is given by its flat faces [mm]; raises UnreadableError if it is none."""
+    return facets(*listed_faces(item, scale))
+
+
+def listed_faces(item: Entity, scale: float) -> tuple[Cloud, list[list[Loop]]]:
+    """Return the points of such a body [mm], and the loops of each face by rows of points."""
     if item.is_a() in SHELLS:
         return _shells(item, scale)
     points = _listed(need(item, "Coordinates"), scale)
@@ -34,7 +39,7 @@ def faced(item: Entity, scale: float) -> Facets:
         faces = [(corners,) for corners in several(item, "CoordIndex")]
     numbered = several(item, "PnIndex")
     rows = [[_rows(loop, numbered, len(points)) for loop in loops] for loops in faces]
-    return facets(points, rows)
+    return points, rows
 
 
 def _listed(listed: Entity, scale: float) -> Cloud:
@@ -59,7 +64,7 @@ def _rows(loop: Sequence[int], numbered: Sequence[int], count: int) -> Loop:
     return [place - 1 for place in places]
 
 
-def _shells(item: Entity, scale: float) -> Facets:
+def _shells(item: Entity, scale: float) -> tuple[Cloud, list[list[Loop]]]:
     points: list[tuple[float, ...]] = []
     row_of: dict[int, int] = {}
     faces: list[list[Loop]] = []
@@ -73,7 +78,7 @@ def _shells(item: Entity, scale: float) -> Facets:
         faces.append(loops)
     if not points:
         raise UnreadableError("body has no faces")
-    return facets(np.array(points, dtype=float) * scale, faces)
+    return np.array(points, dtype=float) * scale, faces
 
 
 def _faces(item: Entity) -> Iterator[Entity]:
