@@ -142,15 +142,21 @@ def cut_into_pieces(lines: CentreLines) -> Pieces:
 
 def _without_drift(steps: Pieces, begins: Bools) -> Bools:
     """Begin a piece also where steps that each go on straight have turned too far together."""
-    while not begins.all():
-        first = np.flatnonzero(begins)[np.cumsum(begins) - 1]
-        on = np.flatnonzero(~begins)
-        turned = on[dots(steps.direction[on], steps.direction[first[on]]) < COLLINEAR]
-        if not len(turned):
-            break
-        _, earliest = np.unique(first[turned], return_index=True)
-        begins[turned[earliest]] = True
-    return begins
+    run = np.cumsum(begins) - 1
+    first = np.flatnonzero(begins)[run]
+    on = np.flatnonzero(~begins)
+    away = dots(steps.direction[on], steps.direction[first[on]]) < COLLINEAR
+    if not away.any():
+        return begins
+    on = on[np.isin(run[on], run[on[away]])]
+    turn = np.zeros(len(begins))
+    cosine = dots(steps.direction[on], steps.direction[on - 1])
+    turn[on] = np.arccos(np.clip(cosine, -1.0, 1.0))
+    turned = np.cumsum(turn)
+    part = np.floor((turned - turned[first]) / math.acos(COLLINEAR)).astype(np.intp)
+    result = begins.copy()
+    result[on] = part[on] != part[on - 1]
+    return result
 
 
 def _goes_on(pieces: Pieces, cosine: float) -> Bools:
