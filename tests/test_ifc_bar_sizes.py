@@ -222,3 +222,26 @@ def test_a_bar_whose_thickness_nobody_states_is_a_reason() -> None:
     bar = model.bar([axis], None, beam)
     model.aggregate(beam, [bar])
     assert "diameter that nobody states" in model.read(beam).reasons
+
+
+@pytest.mark.parametrize("schema", ["IFC2X3", "IFC4"])
+def test_bars_of_plain_surface_are_not_read(schema: str) -> None:
+    """Development lengths are those of deformed bars (CSA A23.3-14 12.1.1, from memory)."""
+    model = ModelWithBars(schema=schema)
+    beam = model.beam()
+    (plain,) = model.bars(beam, straight(50, 5950, -80, 60), BarSurface="PLAIN")
+    model.bars(beam, straight(50, 5950, 80, 60), BarSurface="TEXTURED")
+    found = model.read(beam)
+    assert f"bar #{plain.id()}: has a plain surface" in found.reasons
+    assert [bars.count for bars in found.bars] == [1]
+
+
+def test_a_surface_that_only_the_type_tells() -> None:
+    model = ModelWithBars()
+    beam = model.beam()
+    bars = model.bars(beam, straight(50, 5950, -80, 60), straight(50, 5950, 80, 60))
+    kind = model.root("IfcReinforcingBarType", Name="T", PredefinedType="MAIN", BarSurface="PLAIN")
+    model.root("IfcRelDefinesByType", RelatedObjects=bars, RelatingType=kind)
+    assert "plain surface" in model.read(beam).reasons
+    bars[1].BarSurface = "TEXTURED"
+    assert [bar.count for bar in model.read(beam).bars] == [1]

@@ -52,6 +52,8 @@ def frame_of_bars(unit: str, schema: str, rng: random.Random) -> ModelWithBars:
         solid = model.file.create_entity("IfcSweptDiskSolid", polyline, 10.0 * model.scale)
         model.aggregate(beam, [model.bar([solid], 20.0, beam, SteelGrade="400W")])
         model.bars(beam, straight(50, 5950, 90, 60), diameter=20.0, SteelGrade="500W")
+        for y, surface in ((-30.0, "PLAIN"), (0.0, "TEXTURED"), (30.0, "PLAIN")):
+            model.bars(beam, straight(50, 5950, y, 60), diameter=20.0, BarSurface=surface)
         solid = model.swept(closed_stirrup(0.0, 110.0, 40.0, 560.0), 10.0)
         items = model.mapped(solid, [(150.0 + 200.0 * k, 0.0, 0.0) for k in range(8)])
         stirrups = [model.bar([item], 10.0, beam, Name=rng.choice(NAMES)) for item in items]

@@ -55,6 +55,7 @@ class _Type:
     role: str = ""
     diameter: float | None = None
     area: float | None = None
+    surface: str = ""
 
 
 @dataclass(frozen=True, slots=True)
@@ -67,6 +68,8 @@ class Data:
     """Index into ``BarData.sizes``; -1 where nobody tells."""
     grade: int
     """Index into ``BarData.grades``."""
+    is_plain: bool
+    """Its surface is plain, by the bar or else by its type."""
 
 
 NO_HINTS, NO_TYPE = _Hints(), _Type()
@@ -102,10 +105,11 @@ class BarData:
     ) -> Data:
         """Return what is settled of a bar; ``said`` is what is said of one that is no bar."""
         argument = product.get_argument
+        surface = None
         if product.is_a() == "IfcReinforcingBar":
-            said = (argument(8), argument(9), argument(10), argument(12))
+            said, surface = (argument(8), argument(9), argument(10), argument(12)), argument(13)
         related = self.related(step_id)
-        key = (said, argument(4), self.size_in(name), *related, swept)
+        key = (said, surface, argument(4), self.size_in(name), *related, swept)
         data = self._settled.get(key)
         if data is None:
             data = self._settled[key] = self._settle(step_id, *key)
@@ -137,6 +141,7 @@ class BarData:
         self,
         step_id: int,
         said: Said,
+        surface: str | None,
         object_type: str | None,
         named: str,
         type_id: int | None,
@@ -151,7 +156,12 @@ class BarData:
         own_role = role if role and role != "NOTDEFINED" else about.role
         size = self._size(diameter, area, about, swept, name, hints)
         steel = self._material(material, step_id)
-        return Data(own_role, size, self._grade(grade, steel, hints, about.name, object_type))
+        return Data(
+            own_role,
+            size,
+            self._grade(grade, steel, hints, about.name, object_type),
+            (surface or about.surface) == "PLAIN",
+        )
 
     def _named(self, name: str) -> str:
         """The bar size in a name."""
@@ -167,6 +177,7 @@ class BarData:
                 str(get(entity, "PredefinedType") or ""),
                 get(entity, "NominalDiameter"),
                 get(entity, "CrossSectionArea"),
+                str(get(entity, "BarSurface") or ""),
             )
         return self._types[type_id]
 

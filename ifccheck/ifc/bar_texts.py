@@ -29,7 +29,7 @@ class BarTexts:
     name: Rests
     tag: Rests
     data: tuple[Rests, ...]
-    """All that tells size, grade and role."""
+    """All that tells size, grade, role and surface."""
     placement: Ints
     """STEP id; 0 for none."""
     shape: Ints
@@ -53,11 +53,12 @@ def read_bar_texts(table: StepTable, bars: Ints) -> BarTexts:
         """From one argument to another."""
         return Rests(rests.data, commas[:, first - 1] + 1, commas[:, last])
 
+    from_role = Rests(rests.data, commas[:, ROLE - 1] + 1, rests.stop[place])
     return BarTexts(
         place=place,
         name=between(NAME, NAME),
         tag=between(TAG, TAG),
-        data=(between(OBJECT_TYPE, OBJECT_TYPE), between(GRADE, AREA), between(ROLE, ROLE)),
+        data=(between(OBJECT_TYPE, OBJECT_TYPE), between(GRADE, AREA), from_role),
         placement=_references(rests.data, commas, PLACEMENT),
         shape=_references(rests.data, commas, SHAPE),
     )
