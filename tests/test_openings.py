@@ -377,6 +377,38 @@ def test_recesses_side_by_side_narrow_the_web_together() -> None:
     assert not with_openings(bare, right, after).reasons
 
 
+def test_slots_in_a_row_are_as_long_as_all_of_them() -> None:
+    """Five of 140 x 20 with 10 mm between: one slot of 740 mm, whatever the posts are worth."""
+    made = subject(top=0, loads=(line("floor", 2.0),))
+    row = [hole(2500.0 + 150.0 * n, 140.0, 290.0, 20.0) for n in range(5)]
+    opened = with_openings(made, *row)
+    assert "5 openings less than a depth apart are 700 mm long together" in texts(opened)
+    assert rated(opened)[1][0].verdict is Verdict.NOT_RATED
+    stacked = with_openings(made, hole(2500, 140, 150, 20), hole(2500, 140, 330, 20))
+    assert not stacked.reasons
+
+
+def test_what_is_left_between_openings_is_a_chord() -> None:
+    """From 220 to 320 there are 100 mm left, less than a quarter; to 375 there are 155."""
+    made = subject(top=0, loads=(line("floor", 2.0),))
+    one, close, far = (hole(2500, 100, bottom, 60) for bottom in (160.0, 320.0, 375.0))
+    assert "a chord of 100 mm" in texts(with_openings(made, one, close))
+    assert not with_openings(made, one, far).reasons
+
+
+@pytest.mark.parametrize(("bottom", "height"), [(250.0, 100.0), (350.0, 250.0)])
+def test_two_halves_make_a_whole(bottom: float, height: float) -> None:
+    """A duct, or a notch from the top, drawn in two from either side of the beam."""
+    made = subject(bottom=0, top=0, loads=(line("floor", 2.0),))
+    right, left = (hole(2500, 100, bottom, height, *each) for each in ((-150, 0), (0, 150)))
+    opened = with_openings(made, right, left)
+    assert f"it takes the web over {show(height, 'dimension')}" in texts(opened)
+    assert opened.body is not None
+    assert [(one.start, one.end) for one in opened.body.losses] == [(2200.0, 2900.0)] * 2
+    assert all(math.isnan(one.height) for one in opened.body.losses)
+    assert "flange alone" not in " ".join(remark.text for remark in opened.remarks)
+
+
 @pytest.mark.parametrize("gap", [0.0, 299.0, 301.0])
 def test_a_concentrated_load_near_an_opening(gap: float) -> None:
     load = point("press", 5e3, 2150.0 + gap)

@@ -14,9 +14,11 @@ It is ours, on the cautious side of what is published:
   most; where it lies within the web, its length is limited as well. Width is that of what is left.
 - Within one depth of the face of a support (half of the depth in Tan and Mansur, ACI Structural
   Journal 93-S37, 1996) or of a change of the section, within half a depth of a concentrated load
-  (same paper), where openings less than a depth apart are together too high, and where a stirrup's
-  leg is cut, nothing is small. What is not small is not rated in shear, over its length and half a
-  depth on either side.
+  (same paper), where openings less than a depth apart are together too high or too long, and where
+  a stirrup's leg is cut, nothing is small. What is not small is not rated in shear, over its length
+  and half a depth on either side.
+- Openings one above the other leave a chord between them, which is measured as well. Recesses that
+  take the web's whole width only together are not small.
 """
 
 from __future__ import annotations
@@ -27,7 +29,7 @@ from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
 from ifccheck.beam import Beam, Load, Opening, Reason, Run, ShearLoss, Stirrups
-from ifccheck.frame.figures import figure_of, levels_of, narrowest, parts_of
+from ifccheck.frame.figures import Stretch, figure_of, levels_of, narrowest, parts_of
 from ifccheck.frame.net_outlines import NOTHING, place_of, without
 from ifccheck.units import show
 
@@ -84,7 +86,7 @@ class Measured:
     notch: float
     """Height of what is taken off the top and the soffit [mm]"""
     chord: float
-    """Depth of the shallowest part that is left [mm]"""
+    """Depth of the shallowest part that it leaves with those above and below it [mm]"""
     web: float
     """Width of the web [mm]"""
     narrowed: float
@@ -93,6 +95,8 @@ class Measured:
     """It lies within the web, with concrete on both sides"""
     middle: float
     """y of the middle of the web [mm]"""
+    shared: float = 0.0
+    """Height over which only those side by side take the whole width [mm]"""
 
     @property
     def height(self) -> float:
@@ -102,7 +106,7 @@ class Measured:
     @property
     def matters(self) -> bool:
         """Whether it takes anything of the web"""
-        return self.height > NOTHING or self.narrowed > NOTHING
+        return max(self.height, self.narrowed, self.shared) > NOTHING
 
 
 @dataclass(frozen=True, slots=True)
@@ -144,22 +148,28 @@ def _measured(beam: Beam, opening: Opening) -> Measured:
 def _measured_in(run: Run, opening: Opening, openings: Sequence[Opening]) -> Measured:
     """What an opening takes off a run; the web is narrowed by all that lie side by side."""
     whole = figure_of(run.outline)
-    left = without(whole, [opening])
     beside = [one for one in openings if one.start < opening.end and one.end > opening.start]
-    (low, high), levels = (whole.bounds[1], whole.bounds[3]), levels_of(left)
+    left = without(whole, beside)
+    (low, high), levels = (whole.bounds[1], whole.bounds[3]), levels_of(without(whole, [opening]))
     web, (right, leftmost) = narrowest(whole)
-    covered = sum(top - bottom for bottom, top in levels)
     return Measured(
         opening=opening,
         depth=high - low,
-        hole=levels[-1][1] - levels[0][0] - covered,
+        hole=levels[-1][1] - levels[0][0] - _covered(levels),
         notch=levels[0][0] - low + high - levels[-1][1],
-        chord=min(top - bottom for bottom, top in levels),
+        chord=min((top - bottom for bottom, top in levels_of(left)), default=0.0),
         web=web,
-        narrowed=max(web - _least_width(without(whole, beside)), 0.0),
+        narrowed=max(web - _least_width(left), 0.0),
         within=right < opening.right - NOTHING and opening.left < leftmost - NOTHING,
         middle=(right + leftmost) / 2.0,
+        shared=sum(_covered(levels_of(without(whole, [one]))) for one in beside)
+        - (len(beside) - 1) * _covered(levels_of(whole))
+        - _covered(levels_of(left)),
     )
+
+
+def _covered(levels: Sequence[Stretch]) -> float:
+    return sum(top - bottom for bottom, top in levels)
 
 
 def _least_width(figure: BaseGeometry) -> float:
@@ -177,6 +187,8 @@ def _faults(one: Measured, everyone: Sequence[Measured], around: Surroundings) -
         yield f"a chord of {show(one.chord, 'dimension')} is less than {LEAST_CHORD:g} of the depth"
     if one.narrowed > SMALL * one.web + NOTHING:
         yield f"it takes {show(one.narrowed, 'dimension')} of the web, more than {SMALL:g} of it"
+    if one.shared > NOTHING:
+        yield f"with those beside it, it takes the web over {show(one.shared, 'dimension')}"
     if one.narrowed > NOTHING and (leg := _cut_leg(one, around.stirrups)):
         yield leg
     yield from _near_support(one, around)
@@ -227,6 +239,21 @@ def _near_others(one: Measured, everyone: Sequence[Measured]) -> Iterator[str]:
             f"{len(near)} openings less than a depth apart take {show(total, 'dimension')}"
             f" together, more than {SMALL:g} of the depth"
         )
+    length = _length_of([other.opening for other in near])
+    if len(near) > 1 and one.height > NOTHING and length > SMALL * one.depth + NOTHING:
+        yield (
+            f"{len(near)} openings less than a depth apart are {show(length, 'dimension')} long"
+            f" together, more than {SMALL:g} of the depth"
+        )
+
+
+def _length_of(openings: Sequence[Opening]) -> float:
+    """How much of the beam's length some openings take [mm]."""
+    length, place = 0.0, -math.inf
+    for one in sorted(openings, key=lambda each: each.start):
+        length += max(one.end - max(one.start, place), 0.0)
+        place = max(place, one.end)
+    return length
 
 
 def _cut_leg(one: Measured, stirrups: Sequence[Stirrups]) -> str:
