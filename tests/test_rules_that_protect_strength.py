@@ -227,6 +227,19 @@ def test_supports_that_press_are_not_told() -> None:
     assert len(lifts(lifted(15.6e3, line("floor", 10.0)))) == 2
 
 
+def test_a_support_that_a_rated_case_lifts_before_its_factor_is_told() -> None:
+    """1.5 x 5 kN f / 2 = 0.9 x 4.32 x 6.0 / 2 where f = 3.11; the top's bars carry far more."""
+    rating = lifted(5e3)
+    (safe,) = rating.safe_loads
+    assert safe.factor > 4.0
+    factor = 0.9 * OWN * 6000.0 / (1.5 * 5e3)
+    texts = [r.text for r in rating.remarks if f"press is more than {factor:.2f} x" in r.text]
+    assert [text[:7] for text in texts] == ["its sta", "its end"]
+    # what presses and grows lifts nothing
+    down = of(subject(loads=(point("press", 5e3, 3000.0),)))
+    assert not [r for r in down.remarks if "is lifted" in r.text]
+
+
 def test_a_fixed_end_holds_itself() -> None:
     beam = subject(
         length=2200.0, top=4, bearing=0.0, ends=("fixed", "free"),

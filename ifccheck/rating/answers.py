@@ -15,7 +15,7 @@ from ifccheck.rating.basis import bases_of
 from ifccheck.rating.batch import Batch, Envelope
 from ifccheck.rating.results import BasisItem, LimitStateRating, Rating, SafeLoad
 from ifccheck.rating.subject import Subject, Unrated
-from ifccheck.rating.uplift import uplift_remarks
+from ifccheck.rating.uplift import growing_uplift_remarks, uplift_remarks
 from ifccheck.standards import LimitState, Standard
 from ifccheck.units import show
 
@@ -192,7 +192,9 @@ def _notes(batch: Batch) -> list[list[Remark]]:
     """On each beam: supports that are lifted, and what the standard remarks of a stretch."""
     keys = [subject.beam.key for subject in batch.subjects]
     remarks: list[list[Remark]] = [[] for _ in keys]
-    for row, remark in uplift_remarks(batch.uplift, keys, batch.places):
+    factors = {case: each.factor for case, each in batch.factors.items()}
+    lifted = uplift_remarks(batch.uplift, keys, batch.places)
+    for row, remark in (*lifted, *growing_uplift_remarks(batch.uplift, factors, keys)):
         remarks[row].append(remark)
     for note in batch.notes:
         mask = note.mask & _in_tension(batch.envelope, note.face) if note.face else note.mask

@@ -171,7 +171,7 @@ def rate_options(
             factors={cases[row].name: least for row, least in lowered.items()},
             places=where,
             envelope=_envelope(under, by_state([*steady, *found])),
-            uplift=uplift_of(under.effects, frame.spans),
+            uplift=uplift_of(under.effects, frame.spans, {cases[row].name: row for row in lowered}),
             notes=standard.notes(prepared),
             basis=standard.basis(prepared),
         )

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator, Sequence
+from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass
 
 import numpy as np
@@ -12,7 +12,7 @@ from ifccheck.analysis.spans import PINNED, SpanTable
 from ifccheck.beam import Remark
 from ifccheck.mechanics.arrays import Bools, Floats, Ints
 from ifccheck.rating.verdict import Places
-from ifccheck.units import show
+from ifccheck.units import show, show_ratio
 
 ROUNDING = 1e-9
 """Share of what presses and lifts a support below which its reaction is zero"""
@@ -28,9 +28,12 @@ class Uplift:
     """[N]; 0 where no combination lifts the support"""
     combination: Ints
     """Row of the combination that lifts it most"""
+    beyond: Mapping[str, Floats]
+    """Factor of each rated case beyond which a combination lifts the support (B, 2); inf where
+    none does"""
 
 
-def uplift_of(effects: Effects, spans: SpanTable) -> Uplift:
+def uplift_of(effects: Effects, spans: SpanTable, rated: Mapping[str, int]) -> Uplift:
     """The greatest pull on each pinned support in any combination.
 
     pull = -min over the combinations of sum(factor x reaction), each case by the factor that
@@ -42,6 +45,8 @@ def uplift_of(effects: Effects, spans: SpanTable) -> Uplift:
         Reactions of each case alone (K, B, 2), and its factors (C, K).
     spans
         How each beam is held (B).
+    rated
+        Row of each rated case.
     """
     reactions = effects.cases.reactions
     pressing, lifting = np.maximum(reactions, 0.0), np.maximum(-reactions, 0.0)
@@ -49,7 +54,15 @@ def uplift_of(effects: Effects, spans: SpanTable) -> Uplift:
     down = np.einsum("ck,kbe->cbe", effects.lesser, pressing)
     net = np.where(up - down > ROUNDING * (up + down), up - down, 0.0)
     pinned: Bools = np.stack([spans.start_kind, spans.end_kind], axis=-1) == PINNED
-    return Uplift(np.where(pinned, net.max(axis=0), 0.0), net.argmax(axis=0))
+    beyond = {}
+    for name, k in rated.items():
+        own = np.multiply.outer(effects.greater[:, k], lifting[k])
+        own -= np.multiply.outer(effects.lesser[:, k], pressing[k])
+        holds = own - (up - down)
+        grows = (own > 0.0) & (holds > 0.0)
+        factor = np.where(grows, holds / np.where(grows, own, 1.0), np.inf).min(axis=0)
+        beyond[name] = np.where(pinned, factor, np.inf)
+    return Uplift(np.where(pinned, net.max(axis=0), 0.0), net.argmax(axis=0), beyond)
 
 
 def uplift_remarks(
@@ -63,3 +76,19 @@ def uplift_remarks(
             f" {places.combination_of(row, beam)}: what holds it down is not checked"
         )
         yield beam, Remark(keys[beam], "demand", text, "doubt")
+
+
+def growing_uplift_remarks(
+    uplift: Uplift, factors: Mapping[str, Floats], keys: Sequence[str]
+) -> Iterator[tuple[int, Remark]]:
+    """What to tell of each support that a rated case lifts before it reaches its rating factor
+    (B), though not as it is."""
+    for case, beyond in uplift.beyond.items():
+        early = (uplift.force == 0.0) & (beyond < factors[case][:, None])
+        for beam, end in np.argwhere(early).tolist():
+            text = (
+                f"its {ENDS[end]} is lifted where {case} is more than"
+                f" {show_ratio(float(beyond[beam, end]))} x assigned: what holds it down is not"
+                " checked"
+            )
+            yield beam, Remark(keys[beam], "demand", text, "doubt")
