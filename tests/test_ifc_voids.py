@@ -262,6 +262,18 @@ def test_openings_of_the_assembly_cut_the_beam_in_it() -> None:
     assert not beam.remarks
 
 
+def test_openings_of_a_part_cut_the_beam_that_shows_it_whole() -> None:
+    building = Building()
+    product = rectangular(building)
+    profile = building.rectangle(WIDTH, DEPTH, Position=building.axes_2d((0, DEPTH / 2)))
+    solid = building.extrusion(profile, LENGTH, z=(1, 0, 0), x=(0, 1, 0))
+    part = building.member("IfcBuildingElementPart", solid, Name="concrete")
+    building.give_parts(product, part)
+    building.void(part, across(building, building.rectangle(200.0, 200.0), 1000.0, 300.0))
+    (opening,) = only_beam(building.read()).openings
+    assert box_of(opening)[:2] == pytest.approx((900.0, 1100.0))
+
+
 def test_an_opening_that_misses_the_beam_is_remarked_and_takes_nothing() -> None:
     building = Building()
     product = tee(building)

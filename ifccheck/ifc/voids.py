@@ -78,10 +78,14 @@ class VoidReader:
         self._profiles = profiles
 
     def of(self, step_id: int, axis: Axis, runs: Sequence[Run]) -> Voids:
-        """Return the openings of a beam, its own and those of the wholes that it is part of."""
+        """Return the openings of a beam: its own, those of its parts, which its body shows
+        whole, and those of the wholes that it is part of."""
         found = Voids()
         relations, by_id = self._context.relations, self._context.file.by_id
-        for number, owner in enumerate((step_id, *relations.ancestors(step_id))):
+        if not relations.openings:
+            return found
+        around = (*relations.descendants(step_id), *relations.ancestors(step_id))
+        for number, owner in enumerate((step_id, *around)):
             for opening in map(by_id, relations.openings.get(owner, ())):
                 self._read(opening, axis, runs, found, own=number == 0)
         return found
