@@ -78,7 +78,7 @@ def net_of(
     impossible += _cut_bends(beam.openings, steel.bars)
     runs, gone = net_runs(with_flanges(beam.runs, slab.flanges), beam.openings)
     if impossible or gone:
-        return Net(reasons=(*impossible, *gone), remarks=slab.remarks)
+        return Net(reasons=(*slab.reasons, *impossible, *gone), remarks=slab.remarks)
     kinds = standing.span.start_support.kind, standing.span.end_support.kind
     held = kinds[0] != "free", kinds[1] != "free"
     changes = [run.start for run in beam.runs[1:]]
@@ -91,7 +91,7 @@ def net_of(
     weighed = net_runs(beam.runs, beam.openings)[0] if light else beam.runs
     return Net(
         RatedBody(runs, losses, weighed, slab.flanges, slab.source),
-        reasons=tuple(one.reason for one in judged if one.faults),
+        reasons=(*slab.reasons, *(one.reason for one in judged if one.faults)),
         remarks=(
             *slab.remarks, *notes,
             *(Remark(beam.key, STAGE, text, "assumption") for text in taken),
@@ -104,7 +104,7 @@ def _without_openings(beam: Beam, slab: Counted) -> Net:
         return Net(remarks=slab.remarks)
     runs = with_flanges(beam.runs, slab.flanges)
     body = RatedBody(runs, slab.losses, beam.runs, slab.flanges, slab.source)
-    return Net(body, remarks=slab.remarks)
+    return Net(body, slab.reasons, slab.remarks)
 
 
 def _tapered(beam: Beam) -> Iterator[Reason]:

@@ -7,7 +7,7 @@ from dataclasses import dataclass
 from itertools import pairwise
 from typing import Literal
 
-from ifccheck.beam import Beam, Flange, Load, Remark, Run, ShearLoss
+from ifccheck.beam import Beam, Flange, Load, Reason, Remark, Run, ShearLoss
 from ifccheck.frame.figures import figure_of
 from ifccheck.frame.flanges import Meeting
 from ifccheck.frame.net_outlines import with_flanges
@@ -21,6 +21,7 @@ Wanted = Literal["none", "level", "on top"]
 
 ASKED = "(write slab_flange = true for it under [[beams]] where both are cast as one)"
 ON_TOP_ASKED = '(write slab_flange = "on top" for it under [[beams]] where both are one)'
+NOT_INCLUDED = "weight of slab not included"
 WEIGHT = "slab that counts as a flange is not in the self weight: its weight must be in the loads"
 
 
@@ -41,6 +42,8 @@ class Asked:
     """[N/mm3]"""
     permanent: Collection[str]
     """Names of the permanent cases"""
+    loads_complete: bool = False
+    """The engineer states that what rests on the beam is in the loads"""
 
 
 @dataclass(frozen=True, slots=True)
@@ -51,6 +54,8 @@ class Counted:
     source: str = ""
     """Where the brief says so"""
     remarks: tuple[Remark, ...] = ()
+    reasons: tuple[Reason, ...] = ()
+    """Not blocking: why the loads cannot be all"""
 
     @property
     def losses(self) -> tuple[ShearLoss, ...]:
@@ -80,9 +85,11 @@ def counted(beam: Beam, asked: Asked, loads: Sequence[Load]) -> Counted:
     flanges = tuple(one for one in level if not _weaker(one, asked.strength))
     texts = [*_not_counted(meeting, asked, level), *_told(flanges, asked)]
     remarks = [Remark(beam.key, STAGE, text, "assumption") for text in texts]
-    if flanges and (text := _too_light(beam, flanges, asked, loads)):
+    text = _too_light(beam, flanges, asked, loads) if flanges else ""
+    if text and asked.loads_complete:
         remarks.append(Remark(beam.key, STAGE, text, "doubt"))
-    return Counted(flanges, asked.source, tuple(remarks))
+    reasons = (Reason(text, blocking=False),) if text and not asked.loads_complete else ()
+    return Counted(flanges, asked.source, tuple(remarks), reasons)
 
 
 def _weaker(flange: Flange, strength: float) -> bool:
@@ -153,8 +160,8 @@ def _too_light(beam: Beam, flanges: Sequence[Flange], asked: Asked, loads: Seque
     if given >= weight:
         return ""
     return (
-        f"the permanent loads, {show(given, 'force')} in all, cannot hold the weight of the slab"
-        f" that counts as a flange, {show(weight, 'force')}"
+        f"{NOT_INCLUDED}: the permanent loads, {show(given, 'force')} in all, cannot hold that of"
+        f" what counts as a flange, {show(weight, 'force')}"
     )
 
 

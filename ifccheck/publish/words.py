@@ -126,6 +126,8 @@ NO_LOAD = "no load assigned"
 CURES = {
     "reactions not included": "put what rests on them in the loads, then write loads_complete ="
     " true under [[beams]]",
+    "weight of slab not included": "put it in a permanent case of the loads, or write"
+    " loads_complete = true under [[beams]] where another member carries it",
     NO_LOAD: "reach them with an entry of [[loads]], or write unloaded = true under [[beams]]",
     "supports unknown": "write an entry of [[supports]] that names them",
 }

@@ -198,6 +198,7 @@ def _asked(beam: Beam, sources: Sources, statement: BeamStatement, concrete: Con
         strength=concrete.strength.value,
         unit_weight=concrete.unit_weight.value,
         permanent=sources.permanent_cases,
+        loads_complete=statement.loads_complete,
     )
 
 
