@@ -137,6 +137,20 @@ def test_a_load_moved_to_an_opening_is_told(tmp_path: Path) -> None:
     assert any("a concentrated load stands" in reason for reason in answer["reasons"])
 
 
+@pytest.mark.parametrize(("x", "near"), [(1900.0, True), (3150.0, False)])
+def test_a_beam_that_frames_in_at_an_opening_is_told(tmp_path: Path, x: float, near: bool) -> None:
+    """Though the engineer says that its reaction is in the line loads."""
+    secondary = replace(
+        SOLID, mark="O-2", origin=(x, 150.0, 0.0), direction=90.0, columns=(0.0, 300.0)
+    )
+    stated = '[[beams]]\nbeams = ["O-1"]\nloads_complete = true\n'
+    run = rate_model(tmp_path, model(OPENED, secondary), brief(*LOADS, stated))
+    answer = answers(run)["O-1"]
+    told = any("a member meets the beam (O-2 (IfcBeam))" in text for text in answer["reasons"])
+    assert told == near
+    assert answer["verdict"] == ("not rated" if near else "adequate")
+
+
 def test_the_rating_factor_of_a_beam_with_an_opening_is_where_it_begins_to_fall_short(
     tmp_path: Path,
 ) -> None:

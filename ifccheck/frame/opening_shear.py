@@ -28,7 +28,7 @@ from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
-from ifccheck.beam import Beam, Load, Opening, Reason, Run, ShearLoss, Stirrups
+from ifccheck.beam import Beam, Contact, Load, Opening, Reason, Run, ShearLoss, Stirrups
 from ifccheck.frame.figures import Stretch, figure_of, levels_of, narrowest, parts_of
 from ifccheck.frame.net_outlines import NOTHING, place_of, without
 from ifccheck.units import show
@@ -73,6 +73,8 @@ class Surroundings:
     stirrups: Sequence[Stirrups]
     changes: Sequence[float] = ()
     """Where the section of the beam changes, or begins to taper [mm]"""
+    resting: Sequence[Contact] = ()
+    """Members that may bring a reaction to it, whatever loads stand for that"""
 
 
 @dataclass(frozen=True, slots=True)
@@ -194,6 +196,7 @@ def _faults(one: Measured, everyone: Sequence[Measured], around: Surroundings) -
     yield from _near_support(one, around)
     yield from _near_change(one, around.changes)
     yield from _near_load(one, around.loads)
+    yield from _near_member(one, around.resting)
     yield from _near_others(one, everyone)
 
 
@@ -223,6 +226,19 @@ def _near_load(one: Measured, loads: Sequence[Load]) -> Iterator[str]:
     }
     if near:
         yield f"a concentrated load stands within half a depth of it ({', '.join(sorted(near))})"
+
+
+def _near_member(one: Measured, resting: Sequence[Contact]) -> Iterator[str]:
+    reach = BESIDE * one.depth - NOTHING
+    near = {
+        contact.other
+        for contact in resting
+        if contact.start < one.opening.end + reach
+        and contact.end > one.opening.start - reach
+        and contact.end - contact.start < one.depth
+    }
+    if near:
+        yield f"within half a depth of it a member meets the beam ({', '.join(sorted(near))})"
 
 
 def _near_others(one: Measured, everyone: Sequence[Measured]) -> Iterator[str]:

@@ -10,6 +10,7 @@ from typing import Protocol
 from ifccheck.beam import (
     Bars,
     Beam,
+    Contact,
     Load,
     Opening,
     RatedBody,
@@ -60,6 +61,7 @@ def net_of(
     loads: Sequence[Load],
     steel: Steel,
     slab: Counted = NO_SLAB,
+    resting: Sequence[Contact] = (),
 ) -> Net:
     """Add the slab that counts as a flange to a beam, take its openings off, and judge shear.
 
@@ -71,6 +73,8 @@ def net_of(
     ----------
     beam, standing, loads, steel, slab
         The beam, how it stands, and all that is counted on.
+    resting
+        Members that may bring a reaction to it between its supports.
     """
     if not beam.openings:
         return _without_openings(beam, slab)
@@ -82,7 +86,7 @@ def net_of(
     kinds = standing.span.start_support.kind, standing.span.end_support.kind
     held = kinds[0] != "free", kinds[1] != "free"
     changes = [run.start for run in beam.runs[1:]]
-    around = Surroundings(standing.faces, held, loads, steel.stirrups, changes)
+    around = Surroundings(standing.faces, held, loads, steel.stirrups, changes, resting)
     judged = judged_openings(beam, around)
     light = (all(held) and "fixed" in kinds) or _upward(loads)
     notes = [Remark(beam.key, STAGE, told(one), "note") for one in judged]

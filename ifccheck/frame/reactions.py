@@ -23,16 +23,23 @@ def unknown_reactions(
     unmeasured: Sequence[Unmeasured],
 ) -> list[Reason]:
     """Why a beam is not rated whose loads are not stated to be complete; empty where it is."""
+    resting = resting_between(beam, contacts, standing)
+    reasons = reactions_reason(resting), unmeasured_reason(beam, unmeasured)
+    return [reason for reason in reasons if reason]
+
+
+def resting_between(
+    beam: Beam, contacts: Sequence[Contact], standing: Standing
+) -> tuple[Contact, ...]:
+    """Contacts that may bring a reaction to a beam as it stands; see ``between_reactions``."""
     span = standing.span
-    resting = between_reactions(
+    return between_reactions(
         contacts,
         beam.length,
         standing.bearings,
         free_start=span.start_support.kind == "free",
         free_end=span.end_support.kind == "free",
     )
-    reasons = reactions_reason(resting), unmeasured_reason(beam, unmeasured)
-    return [reason for reason in reasons if reason]
 
 
 def between_reactions(

@@ -29,7 +29,7 @@ from ifccheck.brief.supports import resolve_supports, stated_ends
 from ifccheck.frame.carrying import contacts_of, pressed_ends
 from ifccheck.frame.flanges import NO_MEETING, Slabs
 from ifccheck.frame.openings import Net, net_of
-from ifccheck.frame.reactions import loaded_from_side, unknown_reactions
+from ifccheck.frame.reactions import loaded_from_side, resting_between, unknown_reactions
 from ifccheck.frame.slab_flanges import Asked, counted
 from ifccheck.frame.spans import Standing, stand_alone
 from ifccheck.rating.shape import deep_member, shape_reasons
@@ -131,7 +131,8 @@ def _one(
     net = Net()
     if standing and steel:
         slab = counted(beam, _asked(beam, sources, statement, concrete), loads)
-        net = net_of(beam, standing, loads, steel, slab)
+        resting = resting_between(beam, contacts, standing) if beam.openings else ()
+        net = net_of(beam, standing, loads, steel, slab, resting)
         if net.body:
             findings.reasons += deep_member(net.body.runs, standing.faces, sources.standard)
     findings.take(net)
