@@ -334,6 +334,19 @@ def test_reinforcement_set_on_steel_proves_nothing() -> None:
     assert only_left_out(building.read()).reason == "steel"
 
 
+@pytest.mark.parametrize(
+    "name", ["Post Tensioned Beam", "post_tensioned 600x900", "Pre stressed", "Hollow core 265"]
+)
+def test_words_for_prestress_may_be_written_apart(name: str) -> None:
+    beam = only_beam(read_one("Concrete C30/37", Name=name))
+    assert f'prestressed: named so in "{name}"' in reasons(beam)
+
+
+@pytest.mark.parametrize("material", ["Concrete C16/20", "Beton C18/22"])
+def test_a_low_class_of_concrete_is_no_timber(material: str) -> None:
+    assert "contradictory" not in reasons(only_beam(read_one(material)))
+
+
 @pytest.mark.parametrize("how", ["in the beam", "beside it", "by name", "hollow core", "by type"])
 def test_prestressed_beams_are_told(how: str) -> None:
     building = Building("IFC4")

@@ -15,8 +15,9 @@ if TYPE_CHECKING:
     from ifccheck.ifc.context import Context
 
 PRECAST = re.compile(
-    r"pre-?cast|pre-?fab|fertigteil|filigran|préfabriqu|prefabrik|pr[eé]-?moldad|hollow-?core"
-    r"|double[- ]tee|kanaalplaat|breedplaat",
+    r"pre[-_ ]?cast|pre[-_ ]?fab|fertigteil|filigran|elementdecke|hohldiele|préfabriqu|prefabrik"
+    r"|pr[eé]-?dalle|alv[eé]olair|alveolar|pr[eé]-?moldad|hollow[-_ ]?core|\bHCS\b|double[-_ ]?tee"
+    r"|kanaalplaat|breedplaat",
     re.IGNORECASE,
 )
 MADE_ELSEWHERE = re.compile(r"factory|shop|off-?site|plant", re.IGNORECASE)

@@ -114,7 +114,7 @@ MATERIAL_GRADES: Mapping[str, str] = {
     STEEL: r"s(?:235|275|355|420|450|460)[a-z0-9]{0,3}|st ?(?:37|52)(?:-\d)?|fe ?(?:360|430|510)"
     r"|a36|a992|a572|a500|a53|(?:300|350|380|400)wt?|8\.8|10\.9",
     REBAR: r"[bf]e?b? ?(?:400|420|450|500|550|600)[a-z]{0,3}",
-    "timber": r"gl ?\d{2}[chk]?|c(?:14|16|18|22)",
+    "timber": r"gl ?\d{2}[chk]?|c(?:14|16|18|22)(?!/)",
     CONCRETE: r"l?c ?\d{2,3}/\d{2,3}",
 }
 """Grades that only one material has; looked for in the names of materials alone."""
@@ -134,8 +134,8 @@ LIGHTWEIGHT = re.compile(
     re.IGNORECASE,
 )
 PRESTRESSED = re.compile(
-    r"pre-?stress|post-?tension|pre-?tension|spannbeton|vorgespannt|voorgespannen|spennarmer"
-    r"|spennbetong|précontraint|precontraint|precompress|pretensad|postesad|postensad|hollow-?core",
+    r"pre[-_ ]?stress|post[-_ ]?tension|pre[-_ ]?tension|spannbeton|vorgespannt|voorgespannen|spennarmer"
+    r"|spennbetong|précontraint|precontraint|precompress|pretensad|postesad|postensad|hollow[-_ ]?core",
     re.IGNORECASE,
 )
 
