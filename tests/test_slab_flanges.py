@@ -15,7 +15,7 @@ from ifccheck.beam import Axis, Beam, Box, Flange, Member, Outline, Run, ShearLo
 from ifccheck.frame.flanges import LOWER_HALF, NO_MEETING, Meeting, Slabs
 from ifccheck.frame.net_outlines import with_flanges
 from ifccheck.frame.reaches import Reach, Side, bridged, reaches, spread
-from ifccheck.frame.slab_flanges import Asked, counted
+from ifccheck.frame.slab_flanges import NOT_BESIDE, Asked, counted
 from ifccheck.mechanics.overhangs import overhangs
 from ifccheck.rating.assembly import frame_of
 from tests.made_subjects import CASES, line, rated, subject
@@ -381,6 +381,15 @@ def plate(name: str, x: float, z: float, ifc_class: str = "IfcSlab") -> Member:
     box = Box((x, 1650.0, z), ((1.0, 0.0, 0.0), (0.0, 1.0, 0.0), (0.0, 0.0, 1.0)),
               (3000.0, 1500.0, 75.0))  # fmt: skip
     return Member(hash(name), name, ifc_class, name, "Level 1", box)
+
+
+def test_a_slab_that_is_asked_for_in_vain_is_told() -> None:
+    """One that slopes, or of a body that is no plate, is not read as a slab at all."""
+    near = replace(asked(met(made_slab())), near=("S-1 (IfcSlab)", "ramp (IfcSlab)"))
+    texts = [remark.text for remark in counted(made_beam(), near, ()).remarks]
+    assert [text for text in texts if "not counted" in text] == [
+        f"slab is not counted as a flange: ramp (IfcSlab): {NOT_BESIDE}"
+    ]
 
 
 def test_slabs_near_are_named_by_their_boxes() -> None:

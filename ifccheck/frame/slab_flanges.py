@@ -21,6 +21,7 @@ Wanted = Literal["none", "level", "on top"]
 
 ASKED = "(write slab_flange = true for it under [[beams]] where both are cast as one)"
 ON_TOP_ASKED = '(write slab_flange = "on top" for it under [[beams]] where both are one)'
+NOT_BESIDE = "no level plate of one thickness was found to reach out from the beam"
 NOT_INCLUDED = "weight of slab not included"
 WEIGHT = "slab that counts as a flange is not in the self weight: its weight must be in the loads"
 
@@ -111,6 +112,10 @@ def _refused(beam: Beam, asked: Asked) -> str:
 def _not_counted(meeting: Meeting, asked: Asked, level: Sequence[Flange]) -> Iterator[str]:
     if asked.wanted == "none":
         return
+    known = (*(one.origin for one in meeting.flanges), *meeting.doubts)
+    for name in asked.near:
+        if not any(text.startswith(name) for text in known):
+            yield f"slab is not counted as a flange: {name}: {NOT_BESIDE}"
     for doubt in meeting.doubts:
         yield f"slab is not counted as a flange: {doubt}"
     for origin in dict.fromkeys(one.origin for one in meeting.flanges if one not in level):

@@ -134,8 +134,9 @@ LIGHTWEIGHT = re.compile(
     re.IGNORECASE,
 )
 PRESTRESSED = re.compile(
-    r"pre[-_ ]?stress|post[-_ ]?tension|pre[-_ ]?tension|spannbeton|vorgespannt|voorgespannen|spennarmer"
-    r"|spennbetong|précontraint|precontraint|precompress|pretensad|postesad|postensad|hollow[-_ ]?core",
+    r"pre[-_ ]?stress|post[-_ ]?tension|pre[-_ ]?tension|spannbeton|vorgespannt|voorgespannen"
+    r"|spennarmer|spennbetong|précontraint|precontraint|precompress|pretensad|postesad|postensad"
+    r"|hollow[-_ ]?core",
     re.IGNORECASE,
 )
 
