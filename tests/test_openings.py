@@ -402,7 +402,7 @@ def test_two_halves_make_a_whole(bottom: float, height: float) -> None:
     made = subject(bottom=0, top=0, loads=(line("floor", 2.0),))
     right, left = (hole(2500, 100, bottom, height, *each) for each in ((-150, 0), (0, 150)))
     opened = with_openings(made, right, left)
-    assert f"it takes the web over {show(height, 'dimension')}" in texts(opened)
+    assert f"it takes the whole web over {show(height, 'dimension')} of height" in texts(opened)
     assert opened.body is not None
     assert [(one.start, one.end) for one in opened.body.losses] == [(2200.0, 2900.0)] * 2
     assert all(math.isnan(one.height) for one in opened.body.losses)

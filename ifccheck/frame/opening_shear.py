@@ -190,7 +190,8 @@ def _faults(one: Measured, everyone: Sequence[Measured], around: Surroundings) -
     if one.narrowed > SMALL * one.web + NOTHING:
         yield f"it takes {show(one.narrowed, 'dimension')} of the web, more than {SMALL:g} of it"
     if one.shared > NOTHING:
-        yield f"with those beside it, it takes the web over {show(one.shared, 'dimension')}"
+        height = show(one.shared, "dimension")
+        yield f"with those beside it, it takes the whole web over {height} of height"
     if one.narrowed > NOTHING and (leg := _cut_leg(one, around.stirrups)):
         yield leg
     yield from _near_support(one, around)
