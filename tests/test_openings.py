@@ -521,6 +521,17 @@ def test_self_weight_that_may_relieve_is_that_of_what_is_left(made: Subject) -> 
     assert NET_WEIGHT in [remark.text for remark in opened.remarks]
 
 
+def test_flange_beyond_an_opening_carries_nothing_but_weighs() -> None:
+    """A slot of 100 x 2000 mm beside the web parts 350 mm of flange from it."""
+    made = subject(ends=("fixed", "fixed"), loads=(line("floor", 2.0),))
+    slot = hole(2000.0, 2000.0, 450.0, 150.0, 150.0, 250.0)
+    opened = with_openings(made, slot, outline=TEE)
+    assert not opened.reasons
+    assert overhangs(opened.runs[1].outline.rings, TEE.rings)[:2] == pytest.approx((0.0, 450.0))
+    gross = 0.3 * 0.45 + 1.2 * 0.15
+    assert weight_on(opened) == pytest.approx((gross * 6.0 - 0.1 * 0.15 * 2.0) * 24e3)
+
+
 def test_a_divided_section_that_no_rule_has_judged_is_not_rated_in_shear() -> None:
     made = subject(loads=(line("floor", 2.0),))
     runs, _ = net_runs(made.beam.runs, (hole(2500),))

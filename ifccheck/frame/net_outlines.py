@@ -29,11 +29,12 @@ def place_of(opening: Opening) -> str:
 
 
 def net_runs(
-    runs_of_beam: Sequence[Run], openings: Sequence[Opening]
+    runs_of_beam: Sequence[Run], openings: Sequence[Opening], *, beyond: bool = True
 ) -> tuple[tuple[Run, ...], list[Reason]]:
     """The runs cut where openings begin and end, each with what is left of its outline.
 
-    Tapers stay as they are: no opening may lie in one.
+    Tapers stay as they are: no opening may lie in one. Without ``beyond`` flange that lies beyond
+    an opening is left: it carries nothing, but weighs.
     """
     runs: list[Run] = []
     gone: list[Reason] = []
@@ -44,7 +45,7 @@ def net_runs(
         for start, end in _pieces(run, openings):
             here = [one for one in openings if one.start < end and one.end > start]
             whole = figure_of(run.outline)
-            figure = without(whole, here)
+            figure = without(whole, here, beyond=beyond)
             if figure is whole:
                 runs.append(Run(start, end, run.outline))
             elif not parts_of(figure):
@@ -85,15 +86,17 @@ def _with_slab(outline: Outline, flanges: Sequence[Flange]) -> Outline:
     return outline_of(figure, outline.name)
 
 
-def without(whole: BaseGeometry, openings: Sequence[Opening]) -> BaseGeometry:
-    """An outline less the boxes of openings, and less the flange that lies beyond them."""
+def without(
+    whole: BaseGeometry, openings: Sequence[Opening], *, beyond: bool = True
+) -> BaseGeometry:
+    """An outline less the boxes of openings, and less the flange that lies ``beyond`` them."""
     from shapely import box
 
     if not openings:
         return whole
     figure, (_, (right, left)) = whole, narrowest(whole)
     for one in openings:
-        to_right = -WIDE if one.right < right + NOTHING else one.right
-        to_left = WIDE if one.left > left - NOTHING else one.left
+        to_right = -WIDE if beyond and one.right < right + NOTHING else one.right
+        to_left = WIDE if beyond and one.left > left - NOTHING else one.left
         figure = figure.difference(box(to_right, one.bottom, to_left, one.top))
     return figure if figure.area < whole.area - NOTHING else whole

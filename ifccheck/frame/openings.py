@@ -92,9 +92,9 @@ def net_of(
     notes = [Remark(beam.key, STAGE, told(one), "note") for one in judged]
     taken = (RULE, NET_WEIGHT if light else GROSS_WEIGHT)
     losses = (*slab.losses, *(loss for one in judged for loss in losses_of(one)))
-    weighed = net_runs(beam.runs, beam.openings)[0] if light else beam.runs
+    left, _ = net_runs(beam.runs, beam.openings, beyond=False)
     return Net(
-        RatedBody(runs, losses, weighed, slab.flanges, slab.source),
+        RatedBody(runs, losses, left if light else beam.runs, slab.flanges, slab.source),
         reasons=(*slab.reasons, *(one.reason for one in judged if one.faults)),
         remarks=(
             *slab.remarks, *notes,
