@@ -22,6 +22,7 @@ from ifccheck.cases import Nature as Nature
 from ifccheck.openings import Opening as Opening
 from ifccheck.openings import ShearLoss as ShearLoss
 from ifccheck.slabs import Flange as Flange
+from ifccheck.slabs import FlangeWidth as FlangeWidth
 from ifccheck.slabs import Slab as Slab
 from ifccheck.standing import Contact as Contact
 from ifccheck.standing import Line as Line
@@ -132,6 +133,10 @@ class RatedBody:
     """Slab that counts"""
     flange_source: str = ""
     """Where the brief says so"""
+    widths: tuple[FlangeWidth, ...] = ()
+    """How far the flange counts by the standard"""
+    width_source: str = ""
+    """The clauses that say so"""
 
 
 @dataclass(frozen=True, slots=True)

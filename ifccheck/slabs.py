@@ -26,6 +26,19 @@ class Slab:
 
 
 @dataclass(frozen=True, slots=True)
+class FlangeWidth:
+    """How far beyond its web a flange counts by the standard, on a stretch of a beam [mm]."""
+
+    start: float
+    end: float
+    left: float
+    right: float
+    steel_left: float
+    """Within which bars count where the flange is in tension"""
+    steel_right: float
+
+
+@dataclass(frozen=True, slots=True)
 class Flange:
     """Slab beside a beam, or on it, that may count as its flange: a box in the beam's axes [mm]."""
 
@@ -41,3 +54,6 @@ class Flange:
     """Of the slab's concrete, where the model states it [MPa]"""
     on_top: bool = False
     """It lies on the beam's top, and counts only where the engineer says that both are one"""
+    outward: float = 0.0
+    """1 where it reaches out to the left from the face of the web, -1 to the right; 0 where that
+    is not its inner edge"""

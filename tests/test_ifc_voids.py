@@ -52,6 +52,22 @@ def net_volume(beam: Beam) -> float:
     return volume
 
 
+def test_what_the_geometry_engine_prints_is_kept_off_our_output(
+    capfd: pytest.CaptureFixture[str],
+) -> None:
+    """It complains of a tapered extrusion past the streams of Python."""
+    building = Building("IFC4")
+    product = rectangular(building)
+    item = building.entity(
+        "IfcExtrudedAreaSolidTapered", building.rectangle(200.0, 120.0),
+        building.axes((2000, 250, 300), (0, -1, 0), (1, 0, 0)), building.direction((0, 0, 1)),
+        500.0, building.rectangle(200.0, 120.0),
+    )  # fmt: skip
+    building.void(product, item)
+    assert only_beam(building.read()).openings
+    assert capfd.readouterr() == ("", "")
+
+
 @pytest.mark.parametrize("unit", ["MILLIMETRE", "METRE", "FOOT"])
 @pytest.mark.parametrize("schema", ["IFC2X3", "IFC4", "IFC4X3"])
 def test_a_rectangle_through_the_web(schema: str, unit: str) -> None:

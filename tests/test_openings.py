@@ -636,3 +636,9 @@ def test_no_random_opening_makes_a_beam_better_or_the_program_fail(method: str) 
             assert whole.verdict is Verdict.ADEQUATE
             assert not opened.reasons
     assert adequate > 3
+
+
+def test_the_rule_tells_that_openings_near_one_another_are_judged_together() -> None:
+    from ifccheck.frame.opening_shear import RULE
+
+    assert "in a row less than a depth apart, and such as lie one above another, are judged" in RULE

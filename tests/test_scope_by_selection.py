@@ -146,6 +146,31 @@ def test_beams_and_wholes_are_left_out_by_the_brief() -> None:
     }
 
 
+@pytest.mark.parametrize("kind", ["IfcColumn", "IfcWall", "IfcSlab", "IfcFooting", "IfcPile"])
+@pytest.mark.parametrize("schema", ["IFC2X3", "IFC4", "IFC4X3"])
+def test_members_that_are_never_beams_are_passed_over_and_named(schema: str, kind: str) -> None:
+    building = Building(schema)
+    building.beam(solid(building), Name="B-1")
+    member(building, kind, "X-1")
+    found = read(building, ["IfcElement"])
+    assert names(found.beams) == {"B-1"}
+    (told,) = [one.text for one in found.remarks if one.stage == "scope"]
+    assert told.startswith(f'scope.also[1] = "IfcElement" reaches X-1 ({kind}): columns, walls')
+
+
+def test_parts_of_walls_are_no_beams_alone_or_in_an_assembly() -> None:
+    building = Building()
+    building.beam(solid(building), Name="B-1")
+    wall = building.member("IfcWall", Name="W-1")
+    building.give_parts(wall, member(building, "IfcBuildingElementPart", "leaf"))
+    building.give_parts(
+        building.member("IfcElementAssembly", Name="A"), member(building, "IfcColumn", "C-1")
+    )
+    found = read(building, ["IfcBuildingElementPart", "IfcElementAssembly"])
+    assert names(found.beams) == {"B-1"}
+    assert not found.out_of_scope
+
+
 def only_beam_id(model: Any) -> int:
     return int(only_beam(model).step_id) if not model.out_of_scope else int(model.beams[0].step_id)
 

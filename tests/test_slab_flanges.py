@@ -88,7 +88,7 @@ def boxes(meeting: Meeting) -> list[tuple[float, ...]]:
 def test_a_slab_at_the_side_reaches_to_its_edge() -> None:
     (flange,) = met(made_slab()).flanges
     assert (flange.start, flange.end) == pytest.approx((0, LENGTH))
-    assert (flange.right, flange.left) == pytest.approx((149, 3000))
+    assert (flange.right, flange.left) == pytest.approx((150, 3000))
     assert (flange.bottom, flange.top) == pytest.approx((450, 600))
     assert flange.origin == "S-1 (IfcSlab), to its edge"
 
@@ -96,8 +96,8 @@ def test_a_slab_at_the_side_reaches_to_its_edge() -> None:
 def test_a_slab_that_is_drawn_over_the_beam_lies_on_both_sides() -> None:
     both = met(made_slab(y=(-1000.0, 2000.0)))
     assert boxes(both) == [
-        pytest.approx((0, LENGTH, 149, 2000, 450, 600)),
-        pytest.approx((0, LENGTH, -1000, -149, 450, 600)),
+        pytest.approx((0, LENGTH, 150, 2000, 450, 600)),
+        pytest.approx((0, LENGTH, -1000, -150, 450, 600)),
     ]
 
 
@@ -107,8 +107,8 @@ def test_half_the_clear_distance_to_the_next_web() -> None:
     right, left = made_beam("R", -3000.0, 2), made_beam("L", 2000.0, 3)
     found = met(slab, member_of(right), member_of(left, "IfcWall"))
     assert boxes(found) == [
-        pytest.approx((0, LENGTH, 149, 150 + 850, 450, 600)),
-        pytest.approx((0, LENGTH, -150 - 1350, -149, 450, 600)),
+        pytest.approx((0, LENGTH, 150, 150 + 850, 450, 600)),
+        pytest.approx((0, LENGTH, -150 - 1350, -150, 450, 600)),
     ]
     assert found.flanges[0].origin.endswith("to half the clear distance to L (IfcWall)")
 
@@ -187,17 +187,17 @@ def test_a_void_beside_the_beam_ends_the_flange_and_what_is_beyond_spreads() -> 
     45 degrees, up to a tenth of the length."""
     found = met(made_slab((0.0, LENGTH), (150.0, 3000.0), (450.0, 600.0), (2000, 3000, 400, 800)))
     assert boxes(found) == [
-        pytest.approx((0, 1650, 149, 3000, 450, 600)),
-        pytest.approx((1650, 3350, 149, 400, 450, 600)),
-        pytest.approx((3350, LENGTH, 149, 3000, 450, 600)),
+        pytest.approx((0, 1650, 150, 3000, 450, 600)),
+        pytest.approx((1650, 3350, 150, 400, 450, 600)),
+        pytest.approx((3350, LENGTH, 150, 3000, 450, 600)),
     ]
 
 
 def test_a_shaft_at_the_beam_leaves_no_flange_there() -> None:
     found = met(made_slab((0.0, LENGTH), (-150.0, 3000.0), (450.0, 600.0), (2000, 3000, 140, 800)))
     assert boxes(found) == [
-        pytest.approx((0, 1400, 149, 3000, 450, 600)),
-        pytest.approx((3600, LENGTH, 149, 3000, 450, 600)),
+        pytest.approx((0, 1400, 150, 3000, 450, 600)),
+        pytest.approx((3600, LENGTH, 150, 3000, 450, 600)),
     ]
 
 
@@ -276,13 +276,48 @@ def test_where_the_section_varies_no_slab_counts() -> None:
     assert "varies" in found.doubts[0]
 
 
+TEE = Outline((((-150, 0), (150, 0), (150, 450), (600, 450), (600, 600), (-600, 600), (-600, 450),
+                (-150, 450)),))  # fmt: skip
+"""A beam with a flange of its own, 450 beyond its web on both sides"""
+
+
+def tee_member(beam: Beam) -> Member:
+    member = member_of(beam)
+    half = (LENGTH / 2, 600.0, DEPTH / 2)
+    return replace(member, box=replace(member.box, half=half))
+
+
+def test_half_the_clear_distance_is_measured_from_web_to_web() -> None:
+    """Webs 300 wide at 3000 centres: 2700 clear. A T with a flange of 450 of its own reaches 900
+    beyond that to the middle, and what is beside it as far as it would reach beside any web."""
+    wide = made_beam(runs=(Run(0.0, LENGTH, TEE),))
+    slim = made_beam("R", 3000.0, 2)
+    slab = made_slab(y=(600.0, 2850.0))
+    (flange,) = met_by(wide, [slab], [tee_member(wide), member_of(slim)], slim).flanges
+    assert (flange.right, flange.left) == pytest.approx((600, 1500))
+    (other,) = met_by(slim, [slab], [tee_member(wide), member_of(slim)], wide).flanges
+    assert (other.right, other.left) == pytest.approx((-1500, -150))
+    twin = made_beam("R", 3000.0, 2, runs=(Run(0.0, LENGTH, TEE),))
+    (alike,) = met_by(wide, [made_slab(y=(600.0, 2400.0))], [tee_member(wide), tee_member(twin)],
+                      twin).flanges  # fmt: skip
+    assert alike.left == pytest.approx(1500)
+
+
+def test_half_way_lies_within_a_wide_flange_of_its_own() -> None:
+    """Webs 900 apart: half way, 450, is where the flange of its own ends."""
+    wide = made_beam(runs=(Run(0.0, LENGTH, TEE),))
+    slim = made_beam("R", 1200.0, 2)
+    slab = made_slab(y=(600.0, 1050.0))
+    assert met_by(wide, [slab], [tee_member(wide), member_of(slim)], slim).flanges == ()
+
+
 # Reaches -----------------------------------------------------------------------------------------
 
 
 def test_reaches_against_shapely() -> None:
     """The least overhang of a random polygon at many places is never less than what is found."""
     rng = np.random.default_rng(7)
-    side = Side(150.0, 140.0, 160.0, 30.0)
+    side = Side(150.0, 150.0, 140.0, 160.0, 30.0)
     found_any = 0
     for _ in range(30):
         xs = np.sort(rng.uniform(0.0, 6000.0, 6))
@@ -527,7 +562,16 @@ def test_the_basis_lists_the_flange(tmp_path: Path) -> None:
     (item,) = [item for item in answer["basis"] if item["name"] == "Flange"]
     assert "S-1 (IfcSlab), to its edge" in item["value"]
     assert item["source"] == "model; brief, defaults.slab_flanges"
+    assert "y = 150 mm to 1000 mm" in item["value"]
+    assert "y = -1000 mm to -150 mm" in item["value"]
+    # a tenth of the span of 6 m, less than 12 times the thickness of 150
+    (width,) = [item for item in answer["basis"] if item["name"] == "FlangeOverhangs"]
+    assert width["value"].endswith(
+        "x = 0 m to 6.30 m: 600 mm to the left of the web, 600 mm to the right"
+    )
+    assert "10.3.4" in width["source"]
     told = " ".join(remark["text"] for remark in answer["remarks"])
+    assert "y = 150 mm to 1000 mm" in told
     assert "taken to be of" not in told  # the slab states its own strength
     assert "must be in the loads" in told
     assert answer["verdict"] == "not rated"

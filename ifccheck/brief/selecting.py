@@ -61,8 +61,9 @@ def check_scope(brief: Brief, reached: Sequence[Mapping[str, int]]) -> None:
         if not brief.scope.optional and not any(of_model[place] for of_model in reached):
             key = place.partition("[")[0]
             raise BriefError(
-                f"{brief.at(place, brief.lines.get(key))}: {clipped(query, 120)} reaches no member:"
-                " correct it, or write optional = true under [scope]"
+                f"{brief.at(place, brief.lines.get(key))}: {clipped(query, 120)} reaches no member"
+                " (columns, walls, slabs and footings are never taken in): correct it, or write"
+                " optional = true under [scope]"
             )
 
 

@@ -12,7 +12,7 @@ are.
 from __future__ import annotations
 
 from collections import defaultdict
-from collections.abc import Iterator, Sequence
+from collections.abc import Collection, Iterator, Sequence
 from dataclasses import dataclass
 from functools import cached_property, lru_cache
 from typing import TYPE_CHECKING, NamedTuple
@@ -24,7 +24,7 @@ from ifccheck.beam import Axis, Beam, Flange, Member, Outline, Ring, Run, Slab
 from ifccheck.frame.along import varies
 from ifccheck.frame.contacts import kind_of
 from ifccheck.frame.figures import figure_of, narrowest
-from ifccheck.frame.reaches import Plan, Reach, Side, apart, bridged, reaches, spread
+from ifccheck.frame.reaches import NextWeb, Plan, Reach, Side, apart, bridged, reaches, spread
 from ifccheck.frame.webs import Web, web_of, webs_of
 
 if TYPE_CHECKING:
@@ -38,7 +38,7 @@ HORIZONTAL = 1e-3
 LEAST = 30.0
 """A slab that is thinner, or reaches out less, is no flange [mm]"""
 LAP = 1.0
-"""By how much the box of a flange reaches into the beam's side [mm]"""
+"""How far over its middle a slab on top may begin [mm]"""
 FARTHEST = 0.1
 """Part of a beam's length beyond which no overhang counts"""
 LOWER_HALF = "it lies in the lower half of the beam's depth"
@@ -83,7 +83,7 @@ class Slabs:
         self, beams: Sequence[Beam], slabs: Sequence[Slab], members: Sequence[Member]
     ) -> None:
         self._slabs, self._members = slabs, members
-        self._concrete = {beam.step_id for beam in beams}
+        self._concrete = {beam.step_id: beam for beam in beams}
         self._level = [
             one for one in beams if one.runs and one.axis and abs(one.axis.x[2]) <= HORIZONTAL
         ]
@@ -116,7 +116,7 @@ class Slabs:
             return NO_MEETING
         others = {web.step: web for row in rows for web in self._webs_beside(row)}
         others.pop(beam.step_id, None)
-        around = _Around(beam, beam.axis, tuple(others.values()), self._concrete)
+        around = _Around(beam, beam.axis, tuple(others.values()), self._concrete.keys())
         return around.meeting([self._slabs[row] for row in rows])
 
     def _webs_beside(self, row: int) -> list[Web]:
@@ -201,7 +201,7 @@ class _Around:
     beam: Beam
     axis: Axis
     others: Sequence[Web]
-    concrete: set[int]
+    concrete: Collection[int]
     """Step ids of the beams in scope"""
 
     def meeting(self, slabs: Sequence[Slab]) -> Meeting:
@@ -244,12 +244,17 @@ class _Around:
         _, (right, left) = narrowest(figure_of(run.outline))
         middle = (right + left) / 2.0
         for outward in (1.0, -1.0):
+            own_web = left if outward > 0.0 else -right
             face = _face(run, heights, outward, on_top=on_top)
             begin = outward * middle if on_top else face - TOUCHING
             latest = begin + LAP if on_top else face + TOUCHING
-            side = Side(face, begin, latest, 0.0 if on_top else LEAST)
+            side = Side(face, own_web, begin, latest, 0.0 if on_top else LEAST)
             webs = [
-                (self._local((web.ring,), outward), web.name)
+                NextWeb(
+                    whole=self._local((web.ring,), outward),
+                    core=self._local((web.core,), outward),
+                    name=web.name,
+                )
                 for web in self.others
                 if web.runs_with(self.axis)
                 and web.high > slab.bottom - TOUCHING
@@ -279,7 +284,7 @@ class _Around:
         for one in spread(whole, length, FARTHEST * length):
             if not strip.on_top and one.reach < LEAST:
                 continue
-            inner = strip.outward * strip.middle if strip.on_top else strip.face - LAP
+            inner = strip.outward * strip.middle if strip.on_top else strip.face
             outer = strip.face + one.reach
             limit = f"half the clear distance to {one.limit}" if one.limit else "its edge"
             yield Flange(
@@ -292,6 +297,7 @@ class _Around:
                 origin=f"{one.slab.name}, to {limit}",
                 strength=one.slab.strength,
                 on_top=strip.on_top,
+                outward=0.0 if strip.on_top else strip.outward,
             )
 
     def _framing(self, strip: _Strip) -> list[Plan]:

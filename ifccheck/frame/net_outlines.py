@@ -19,6 +19,8 @@ if TYPE_CHECKING:
 
 NOTHING = 0.1
 """What takes off less than this takes nothing off [mm]"""
+LAP = 1.0
+"""How far the box of a flange is taken into the web, so that both become one figure [mm]"""
 WIDE = 1e6
 """Beyond every outline [mm]"""
 
@@ -82,7 +84,9 @@ def _with_slab(outline: Outline, flanges: Sequence[Flange]) -> Outline:
 
     figure = figure_of(outline)
     for one in flanges:
-        figure = figure.union(box(one.right, one.bottom, one.left, one.top))
+        right = one.right - (LAP if one.outward > 0.0 else 0.0)
+        left = one.left + (LAP if one.outward < 0.0 else 0.0)
+        figure = figure.union(box(right, one.bottom, left, one.top))
     return outline_of(figure, outline.name)
 
 

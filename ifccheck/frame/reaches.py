@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterator, Sequence
 from dataclasses import dataclass, replace
 from itertools import pairwise
+from typing import NamedTuple
 
 from ifccheck.beam import Ring, Slab
 
@@ -19,8 +20,15 @@ FAR = 1e6
 SAME = 1.0
 """Reaches that differ by less are one, and stretches with a lesser gap are neighbours [mm]"""
 
-Webs = Sequence[tuple[Plan, str]]
-"""Plans of the next webs, with their names"""
+
+class NextWeb(NamedTuple):
+    """A member that may carry the slab as the beam does."""
+
+    whole: Plan
+    """Its flange of its own included"""
+    core: Plan
+    """Its web alone, where that is known, else the whole"""
+    name: str
 
 
 @dataclass(frozen=True, slots=True)
@@ -28,7 +36,9 @@ class Side:
     """One side of a beam in its own plan, x along it and y outward [mm]."""
 
     face: float
-    """y of the beam's side"""
+    """y of the beam's side, be it that of a flange of its own"""
+    web: float
+    """y of the side of its web"""
     inner: float
     """y from which on outward a slab is looked for"""
     latest: float
@@ -50,7 +60,7 @@ class Reach:
 
 
 def reaches(
-    slab: Slab, plan: Plan, webs: Webs, side: Side, start: float, end: float
+    slab: Slab, plan: Plan, webs: Sequence[NextWeb], side: Side, start: float, end: float
 ) -> list[Reach]:
     """How far a slab reaches out, and no farther than half the clear distance to the next web.
 
@@ -58,8 +68,10 @@ def reaches(
     ----------
     slab
         The slab.
-    plan, webs
-        Plans of it and of others.
+    plan
+        Of the slab.
+    webs
+        The members beside it.
     side
         Where the beam's side is.
     start, end
@@ -70,7 +82,8 @@ def reaches(
     Edges are straight: between two corners of all the plans the least is at either end.
     """
     found: list[Reach] = []
-    for low, high in pairwise(_corners([plan, *(other for other, _ in webs)], start, end)):
+    plans = [plan, *(each for other in webs for each in (other.whole, other.core))]
+    for low, high in pairwise(_corners(plans, start, end)):
         if high - low <= 2.0 * STEP:
             continue
         reach, limit = min(_reach_at(plan, webs, side, x) for x in (low + STEP, high - STEP))
@@ -87,16 +100,28 @@ def _corners(plans: Sequence[Plan], start: float, end: float) -> list[float]:
     return sorted(places)
 
 
-def _reach_at(plan: Plan, webs: Webs, side: Side, x: float) -> tuple[float, str]:
+def _reach_at(plan: Plan, webs: Sequence[NextWeb], side: Side, x: float) -> tuple[float, str]:
     covered = covered_from(plan, x, side.inner)
     if covered is None or covered[0] > side.latest:
         return -FAR, ""
     found = covered[1] - side.face, ""
-    for other, name in webs:
-        beyond = covered_from(other, x, side.face + STEP)
-        if beyond is not None:
-            found = min(found, ((beyond[0] - side.face) / 2.0, name))
+    for other in webs:
+        if (limit := _half_way(other, side, x)) is not None:
+            found = min(found, (limit, other.name))
     return found
+
+
+def _half_way(other: NextWeb, side: Side, x: float) -> float | None:
+    """How far beyond the face half the clear distance between two webs reaches.
+
+    No farther than the other member, whose own flange is none of the slab's.
+    """
+    beyond = covered_from(other.whole, x, side.face + STEP)
+    if beyond is None:
+        return None
+    core = covered_from(other.core, x, side.face + STEP) or beyond
+    half = (max(core[0], beyond[0]) + side.web) / 2.0
+    return max(min(half, beyond[0]) - side.face, 0.0)
 
 
 def covered_from(plan: Plan, x: float, inner: float) -> tuple[float, float] | None:

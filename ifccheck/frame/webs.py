@@ -2,12 +2,14 @@
 
 from __future__ import annotations
 
-from collections.abc import Collection, Sequence
+from collections.abc import Mapping, Sequence
 from itertools import product
 from typing import NamedTuple
 
-from ifccheck.beam import Axis, Box, Member, Ring
+from ifccheck.beam import Axis, Beam, Box, Member, Ring
+from ifccheck.frame.along import varies
 from ifccheck.frame.contacts import kind_of
+from ifccheck.frame.figures import figure_of, narrowest
 
 WEBS = ("IfcBeam", "IfcWall", "IfcMember")
 """Members that may carry a slab as the beam does"""
@@ -24,6 +26,8 @@ class Web(NamedTuple):
 
     ring: Ring
     """Convex"""
+    core: Ring
+    """What its web covers alone, where that is known, else the same"""
     low: float
     high: float
     way: tuple[float, float]
@@ -35,9 +39,20 @@ class Web(NamedTuple):
         return abs(self.way[0] * axis.x[0] + self.way[1] * axis.x[1]) >= SAME_WAY
 
 
-def webs_of(members: Sequence[Member], beams: Collection[int]) -> list[Web]:
+def webs_of(members: Sequence[Member], beams: Mapping[int, Beam]) -> list[Web]:
     """The members that may carry a slab: by their class, or as beams in scope by step id."""
-    return [web_of(one) for one in members if one.step_id in beams or _may_carry(one)]
+    found = [web_of(one) for one in members if one.step_id in beams or _may_carry(one)]
+    return [one._replace(core=_core(beams.get(one.step)) or one.ring) for one in found]
+
+
+def _core(beam: Beam | None) -> Ring:
+    """What the web of a level beam of one section covers in plan; empty for any other."""
+    if beam is None or beam.axis is None or abs(beam.axis.x[2]) > UPRIGHT or varies(beam.runs):
+        return ()
+    (x0, y0, _), (x, y, _), (left_x, left_y, _) = beam.axis.origin, beam.axis.x, beam.axis.y
+    _, (right, left) = narrowest(figure_of(beam.runs[0].outline))
+    ends = ((0.0, right), (beam.length, right), (beam.length, left), (0.0, left))
+    return tuple((x0 + a * x + b * left_x, y0 + a * y + b * left_y) for a, b in ends)
 
 
 def _may_carry(member: Member) -> bool:
@@ -54,8 +69,10 @@ def web_of(member: Member) -> Web:
     reach = sum(abs(axis[2]) * half for axis, half in zip(box.axes, box.half, strict=True))
     lying = [row for row in range(3) if abs(box.axes[row][2]) < LEVEL]
     x, y, _ = box.axes[max(lying, key=lambda row: box.half[row])]
+    ring = _ring(box)
     return Web(
-        ring=_ring(box),
+        ring=ring,
+        core=ring,
         low=box.centre[2] - reach,
         high=box.centre[2] + reach,
         way=(x, y),

@@ -102,7 +102,13 @@ def _read(
         out_of_scope=tuple(left_out),
         members=members.members,
         storeys=storeys.all,
-        remarks=(*opened.remarks, *_repeats(own), *reader.remarks, *members.remarks),
+        remarks=(
+            *opened.remarks,
+            *choice.remarks,
+            *_repeats(own),
+            *reader.remarks,
+            *members.remarks,
+        ),
         unmeasured=members.unmeasured,
         slabs=SlabReader(context, profiles).read() if beams and choice.slabs else (),
     )

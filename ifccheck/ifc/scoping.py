@@ -6,9 +6,9 @@ from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass, field
 from typing import TYPE_CHECKING
 
-from ifccheck.beam import OutOfScope
+from ifccheck.beam import OutOfScope, Remark
 from ifccheck.ifc.bodies import body_representation
-from ifccheck.ifc.entity import REPRESENTATION, Entity
+from ifccheck.ifc.entity import NAME, REPRESENTATION, Entity, label, text_at
 from ifccheck.ifc.members import NOT_SOLID, is_solid_part
 from ifccheck.ifc.opening import OpenedModel
 from ifccheck.ifc.products import Product, read_products
@@ -19,6 +19,10 @@ if TYPE_CHECKING:
     from ifccheck.ifc.context import Context
 
 SAID = "the brief says so"
+NEVER_BEAMS = ("IfcColumn", "IfcWall", "IfcSlab", "IfcFooting", "IfcPile")
+"""Members that no query takes in as beams, nor any part of them"""
+NAMED = 5
+"""Of those how many a remark names"""
 
 
 @dataclass(frozen=True, slots=True)
@@ -32,6 +36,8 @@ class Choice:
     """How many members each query reaches, by its place in the brief"""
     slabs: bool = False
     """Slabs are wanted, which may count as flanges"""
+    remarks: tuple[Remark, ...] = ()
+    """What queries reach that is no beam"""
 
 
 NO_CHOICE = Choice()
@@ -48,19 +54,49 @@ def choose(
 
     Raises BriefError where one cannot be understood or answered.
     """
-    taken = {place: _members(opened, query, place) for place, query in also.items()}
-    left = {place: _members(opened, query, place) for place, query in leave_out.items()}
+    reached = {place: _members(opened, query, place) for place, query in also.items()}
+    taken = {
+        place: [one.id() for one in found if not never_beam(one)]
+        for place, found in reached.items()
+    }
+    left = {
+        place: [one.id() for one in _members(opened, query, place)]
+        for place, query in leave_out.items()
+    }
     return Choice(
         also=frozenset(step_id for found in taken.values() for step_id in found),
         left_out={step_id: leave_out[place] for place, found in left.items() for step_id in found},
         reached={place: len(found) for place, found in (taken | left).items()},
         slabs=slabs,
+        remarks=tuple(
+            Remark(None, "scope", _passed_over(place, also[place], others), "doubt")
+            for place, found in reached.items()
+            if (others := [one for one in found if never_beam(one)])
+        ),
     )
 
 
-def _members(opened: OpenedModel, query: str, place: str) -> list[int]:
+def never_beam(entity: Entity) -> bool:
+    """Whether an element is a column, wall, slab or footing, or a part of one."""
+    if any(entity.is_a(kind) for kind in NEVER_BEAMS):
+        return True
+    wholes = [relation.RelatingObject for relation in getattr(entity, "Decomposes", ())]
+    return any(never_beam(whole) for whole in wholes)
+
+
+def _passed_over(place: str, query: str, others: Sequence[Entity]) -> str:
+    """Tell what a query reaches that is never a beam."""
+    names = [f"{text_at(one, NAME) or label(one)} ({one.is_a()})" for one in others[:NAMED]]
+    more = f" and {len(others) - NAMED} more" if len(others) > NAMED else ""
+    return (
+        f'{place} = "{query}" reaches {", ".join(names)}{more}: columns, walls, slabs, footings and'
+        " their parts are not taken in as beams"
+    )
+
+
+def _members(opened: OpenedModel, query: str, place: str) -> list[Entity]:
     return [
-        entity.id()
+        entity
         for entity in elements_of(opened, query, f'{place} = "{query}"')
         if entity.is_a("IfcElement") and not any(entity.is_a(kind) for kind in NOT_SOLID)
     ]
@@ -99,7 +135,7 @@ def _bodies(context: Context, entity: Entity) -> Iterator[int]:
     if _has_body(entity) or not parts:
         yield entity.id()
     else:
-        yield from sorted(part.id() for part in parts)
+        yield from sorted(part.id() for part in parts if not never_beam(part))
 
 
 def _has_body(entity: Entity) -> bool:

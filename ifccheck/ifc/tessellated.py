@@ -2,6 +2,12 @@
 
 from __future__ import annotations
 
+import ctypes
+import os
+import sys
+from collections.abc import Iterator
+from contextlib import contextmanager
+
 import numpy as np
 
 from ifccheck.ifc.entity import Entity, UnreadableError
@@ -9,6 +15,36 @@ from ifccheck.ifc.profile_curves import SAGITTA
 from ifccheck.ifc.solids import Facets, facets
 
 MM_PER_M = 1000.0
+
+
+STREAMS = (1, 2)
+"""Descriptors of what a process prints, and of its errors"""
+
+
+@contextmanager
+def _quiet() -> Iterator[None]:
+    """Keep off our output what the engine prints by itself, past Python's own streams."""
+    _flush()
+    kept = [os.dup(stream) for stream in STREAMS]
+    nowhere = os.open(os.devnull, os.O_WRONLY)
+    try:
+        for stream in STREAMS:
+            os.dup2(nowhere, stream)
+        yield
+    finally:
+        _flush()
+        for stream, own in zip(STREAMS, kept, strict=True):
+            os.dup2(own, stream)
+            os.close(own)
+        os.close(nowhere)
+
+
+def _flush() -> None:
+    """Write out what Python and the C library hold back."""
+    for stream in (sys.stdout, sys.stderr):
+        stream.flush()
+    library = ctypes.cdll.msvcrt if sys.platform == "win32" else ctypes.CDLL(None)
+    library.fflush(None)
 
 
 def tessellated(item: Entity) -> Facets:
@@ -21,7 +57,8 @@ def tessellated(item: Entity) -> Facets:
     settings = ifcopenshell.geom.settings()
     settings.set("mesher-linear-deflection", SAGITTA / MM_PER_M)
     try:
-        shape = ifcopenshell.geom.create_shape(settings, item)
+        with _quiet():
+            shape = ifcopenshell.geom.create_shape(settings, item)
     except RuntimeError as error:
         raise UnreadableError(
             f"body is an {item.is_a()} that the geometry engine cannot build"

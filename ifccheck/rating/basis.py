@@ -9,7 +9,7 @@ from functools import cache, lru_cache
 
 import numpy as np
 
-from ifccheck.beam import Bars, Flange, Given, Opening, Outline, Stirrups, Support
+from ifccheck.beam import Bars, Flange, FlangeWidth, Given, Opening, Outline, Stirrups, Support
 from ifccheck.mechanics.arrays import Ints
 from ifccheck.mechanics.outlines import bounds
 from ifccheck.notation import bars_in_a_row
@@ -124,6 +124,9 @@ def _body(subject: Subject) -> Iterator[BasisItem]:
         text = "; ".join(map(_flange_text, subject.body.flanges))
         source = f"model; {subject.body.flange_source}"
         yield BasisItem("Flange", "slab counted as a flange", text, "text", source)
+        text = "; ".join(map(_width_text, subject.body.widths)) or "none"
+        label = "overhangs of it that count in compression"
+        yield BasisItem("FlangeOverhangs", label, text, "text", subject.body.width_source)
     if subject.beam.openings:
         text = "; ".join(map(_opening_text, subject.beam.openings))
         yield BasisItem("Openings", "openings taken off", text, "text", "model")
@@ -131,6 +134,14 @@ def _body(subject: Subject) -> Iterator[BasisItem]:
 
 def _flange_text(flange: Flange) -> str:
     return f"{_box_text(flange)}: {flange.origin}"
+
+
+def _width_text(width: FlangeWidth) -> str:
+    return (
+        f"x = {show(width.start, 'length')} to {show(width.end, 'length')}:"
+        f" {show(width.left, 'dimension')} to the left of the web,"
+        f" {show(width.right, 'dimension')} to the right"
+    )
 
 
 def _opening_text(opening: Opening) -> str:

@@ -128,6 +128,16 @@ class Note:
     """Where given, the remark only matters where this face may be in tension"""
 
 
+class FlangeOverhangs(Protocol):
+    """How far the overhangs of a top flange count [mm]."""
+
+    def __call__(
+        self, *, left: Floats, right: Floats, thickness: Floats, span: Floats
+    ) -> tuple[Floats, Floats]:
+        """To the left and to the right of the web."""
+        ...
+
+
 @dataclass(frozen=True, slots=True)
 class Standard:
     """A published standard."""
@@ -159,6 +169,12 @@ class Standard:
     """Remarks on a Prepared, such as minimum reinforcement."""
     basis: Callable[[Any], dict[str, Floats]]
     """Named arrays (N) that the basis of a rating prints, such as effective depths."""
+    flange_overhangs: FlangeOverhangs
+    """Overhangs of a flange that count in compression"""
+    flange_clause: str
+    flange_steel_overhangs: FlangeOverhangs
+    """Overhangs of a flange within which bars count where it is in tension"""
+    flange_steel_clause: str
     least_slenderness: float
     """Clear span over depth below which beam theory does not hold"""
     slenderness_clause: str

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import TypeVar
 
 from ifccheck.beam import (
@@ -30,7 +30,7 @@ from ifccheck.frame.carrying import contacts_of, pressed_ends
 from ifccheck.frame.flanges import NO_MEETING, Slabs
 from ifccheck.frame.openings import Net, net_of
 from ifccheck.frame.reactions import loaded_from_side, resting_between, unknown_reactions
-from ifccheck.frame.slab_flanges import Asked, counted
+from ifccheck.frame.slab_flanges import Asked, Counted, counted
 from ifccheck.frame.spans import Standing, stand_alone
 from ifccheck.rating.shape import deep_member, shape_reasons
 from ifccheck.rating.stiffness import varies
@@ -38,7 +38,8 @@ from ifccheck.rating.subject import Subject, Unrated
 from ifccheck.standards import Standard
 from ifccheck.subjects.concrete import Concrete, concrete_of
 from ifccheck.subjects.findings import Findings, Sources
-from ifccheck.subjects.steel import steel_of
+from ifccheck.subjects.flange_widths import with_widths
+from ifccheck.subjects.steel import Steel, steel_of
 
 Row = TypeVar("Row", Load, Remark)
 
@@ -131,10 +132,7 @@ def _one(
     net = Net()
     if standing and steel:
         slab = counted(beam, _asked(beam, sources, statement, concrete), loads)
-        resting = resting_between(beam, contacts, standing) if beam.openings else ()
-        net = net_of(beam, standing, loads, steel, slab, resting)
-        if net.body:
-            findings.reasons += deep_member(net.body.runs, standing.faces, sources.standard)
+        net = _net(beam, sources, standing, loads, steel, slab, findings)
     findings.take(net)
     if standing is None or steel is None or any(reason.blocking for reason in findings.reasons):
         return Unrated(beam, _distinct(findings.reasons), tuple(findings.remarks))
@@ -201,6 +199,27 @@ def _asked(beam: Beam, sources: Sources, statement: BeamStatement, concrete: Con
         permanent=sources.permanent_cases,
         loads_complete=statement.loads_complete,
     )
+
+
+def _net(
+    beam: Beam,
+    sources: Sources,
+    standing: Standing,
+    loads: Sequence[Load],
+    steel: Steel,
+    slab: Counted,
+    findings: Findings,
+) -> Net:
+    """What is rated of the beam: with its flanges, without its openings."""
+    contacts = sources.contacts.get(beam.key, ())
+    resting = resting_between(beam, contacts, standing) if beam.openings else ()
+    net = net_of(beam, standing, loads, steel, slab, resting)
+    if net.body is None:
+        return net
+    findings.reasons += deep_member(net.body.runs, standing.faces, sources.standard)
+    if not net.body.flanges:
+        return net
+    return replace(net, body=with_widths(net.body, standing.span, sources.standard))
 
 
 def _distinct(reasons: Sequence[Reason]) -> tuple[Reason, ...]:

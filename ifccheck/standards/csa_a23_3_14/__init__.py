@@ -7,7 +7,7 @@ from __future__ import annotations
 
 from ifccheck.mechanics.arrays import Floats
 from ifccheck.standards.contract import Note, Standard
-from ifccheck.standards.csa_a23_3_14 import flexure
+from ifccheck.standards.csa_a23_3_14 import flange, flexure
 from ifccheck.standards.csa_a23_3_14.combinations import ACTIONS, combinations
 from ifccheck.standards.csa_a23_3_14.longitudinal import LONGITUDINAL
 from ifccheck.standards.csa_a23_3_14.materials import density_factor
@@ -108,6 +108,10 @@ STANDARD = Standard(
     quick=QUICK,
     notes=notes,
     basis=basis,
+    flange_overhangs=flange.effective_overhangs,
+    flange_clause="10.3.3, 10.3.4",
+    flange_steel_overhangs=flange.tension_overhangs,
+    flange_steel_clause="10.5.3.1",
     least_slenderness=LEAST_SLENDERNESS,
     slenderness_clause="10.7.1",
     not_checked=(

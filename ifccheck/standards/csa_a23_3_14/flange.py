@@ -63,6 +63,44 @@ def effective_overhangs(
     return np.minimum(left, limit), np.minimum(right, limit)
 
 
+def tension_overhangs(
+    *, left: Floats, right: Floats, thickness: Floats, span: Floats
+) -> tuple[Floats, Floats]:
+    """Overhangs of a top flange in tension within which its bars count.
+
+    overhang <= min(span/20, what counts in compression)
+
+    Parameters
+    ----------
+    left, right, thickness, span : arrays (n) [mm]
+        As for ``effective_overhangs``.
+
+    Returns
+    -------
+    left, right : arrays (n) [mm]
+
+    Notes
+    -----
+    The clause asks that a part of the tension reinforcement be spread over a twentieth of the
+    span, or over what 10.3 gives where that is less (recalled); farther out no bar counts here.
+
+    Examples
+    --------
+    >>> a, b = tension_overhangs(
+    ...     left=np.array([2000.0]), right=np.array([300.0]),
+    ...     thickness=np.array([150.0]), span=np.array([8000.0]))
+    >>> float(a[0]), float(b[0])
+    (400.0, 300.0)
+
+    References
+    ----------
+    CSA A23.3-14, 10.5.3.1
+    """
+    pushed = effective_overhangs(left=left, right=right, thickness=thickness, span=span)
+    one, other = (np.minimum(overhang, span / 20.0) for overhang in pushed)
+    return one, other
+
+
 def effective_strips(
     strips: Floats, *, left: Floats, right: Floats, thickness: Floats, span: Floats
 ) -> Floats:
