@@ -35,6 +35,7 @@ supports = ["pinned", "pinned"]
 
 [reinforcement]
 sources = ["bars", "properties", "schedule"]
+optional = true
 schedule = "schedule.csv"
 
 [cases.floor]
