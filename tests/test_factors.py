@@ -113,7 +113,7 @@ def factors_of(beams: list[Subject], method: str) -> tuple[Floats, Ints]:
     return batch.factors["press"].factor, batch.factors["press"].element
 
 
-@settings(deadline=None, max_examples=20)
+@settings(deadline=None, max_examples=12)
 @given(st.lists(twisted_beams, min_size=1, max_size=4), st.sampled_from(METHODS))
 @example([HUMP], "general")
 @example([HUMP], "simplified")
