@@ -19,6 +19,11 @@ from ifccheck.cases import Case as Case
 from ifccheck.cases import Combination as Combination
 from ifccheck.cases import CombinationKind as CombinationKind
 from ifccheck.cases import Nature as Nature
+from ifccheck.members import Box as Box
+from ifccheck.members import Member as Member
+from ifccheck.members import OutOfScope as OutOfScope
+from ifccheck.members import Storey as Storey
+from ifccheck.members import Unmeasured as Unmeasured
 from ifccheck.openings import Opening as Opening
 from ifccheck.openings import ShearLoss as ShearLoss
 from ifccheck.slabs import Flange as Flange
@@ -37,6 +42,9 @@ Ring = tuple[Point, ...]
 SourceName = Literal["schedule", "bars", "sections", "properties"]
 LoadKind = Literal["line", "point", "moment"]
 Face = Literal["top", "bottom"]
+BarPlace = Literal["own", "near web", "in flange"]
+"""Whether a bar is one of the beam itself, or lies in slab that is its flange: near to the web or
+farther out"""
 RemarkKind = Literal["assumption", "doubt", "note"]
 
 
@@ -137,6 +145,8 @@ class RatedBody:
     """How far the flange counts by the standard"""
     width_source: str = ""
     """The clauses that say so"""
+    steel_source: str = ""
+    """And those that say within which width bars of it count"""
 
 
 @dataclass(frozen=True, slots=True)
@@ -165,6 +175,7 @@ class Bars:
     end_beyond: float = 0.0
     along: float = 1.0
     """Part of their strength that acts along the axis."""
+    place: BarPlace = "own"
 
 
 @dataclass(frozen=True, slots=True)
@@ -303,6 +314,13 @@ class Beam:
     openings: tuple[Opening, ...] = ()
     precast: str = ""
     """What tells that it is precast; empty where nothing does"""
+    slab_bars: tuple[Bars, ...] = ()
+    """Bars of slabs beside it or on it that run along it, wherever they lie; read only where the
+    brief asks for slabs"""
+    slab_bar_doubts: tuple[str, ...] = ()
+    """What the reader of those must know"""
+    slab_bar_fault: str = ""
+    """Why none of them may count; empty where they may"""
 
     @property
     def mark(self) -> str:
@@ -313,62 +331,6 @@ class Beam:
     def length(self) -> float:
         """Length along the axis [mm]; 0 where the body could not be read."""
         return self.axis.length if self.axis else 0.0
-
-
-@dataclass(frozen=True, slots=True)
-class Box:
-    """An oriented box round a member's body: centre, three unit axes, half extents [mm]."""
-
-    centre: Vector
-    axes: tuple[Vector, Vector, Vector]
-    half: Vector
-
-
-@dataclass(frozen=True, slots=True)
-class Member:
-    """Any physical member of the building, for contacts and for the plan."""
-
-    step_id: int
-    guid: str
-    ifc_class: str
-    name: str
-    storey: str
-    box: Box
-    plan: Ring = ()
-    """Outer ring in plan [mm] of a body that stands upright and does not fill its box"""
-    doubt: str = ""
-    """Why it cannot be counted on to carry a beam; empty where it can"""
-
-
-@dataclass(frozen=True, slots=True)
-class Unmeasured:
-    """A beam, column or member of which the model does not tell where it is."""
-
-    step_id: int
-    ifc_class: str
-    name: str
-    storey: str
-
-
-@dataclass(frozen=True, slots=True)
-class OutOfScope:
-    """A beam that is left out on positive evidence."""
-
-    guid: str
-    step_id: int
-    name: str
-    storey: str
-    reason: str
-    """A short class of reason, counted in the summary: "steel", "timber", "footing" ..."""
-    evidence: str
-
-
-@dataclass(frozen=True, slots=True)
-class Storey:
-    """A storey and its elevation [mm]."""
-
-    name: str
-    elevation: float
 
 
 @dataclass(frozen=True, slots=True)

@@ -22,7 +22,7 @@ RESERVED = (SELF, *get_args(Nature))
 def to_brief(table: schema.BriefTable, path: Path, source: Source) -> Brief:
     """Return the brief of a validated file; raise FaultError at a contradiction."""
     cases = _cases(table.cases)
-    return Brief(
+    brief = Brief(
         path=path,
         file_name=path.name,
         sha256="",
@@ -41,6 +41,18 @@ def to_brief(table: schema.BriefTable, path: Path, source: Source) -> Brief:
         combinations=combination_entries(table.combinations, cases),
         scope=_scope(table.scope),
     )
+    _check_slab_bars(brief)
+    return brief
+
+
+def _check_slab_bars(brief: Brief) -> None:
+    for index, entry in enumerate(brief.beams):
+        if entry.slab_bars and not brief.asks_for_slabs:
+            raise FaultError(
+                ("beams", index, "slab_bars"),
+                "counts only where slab counts as a flange: write slab_flange = true here, or"
+                " slab_flanges = true under [defaults]",
+            )
 
 
 def _scope(table: schema.ScopeTable) -> Scope:

@@ -69,8 +69,13 @@ def support_entry(index: int, table: schema.SupportTable) -> SupportEntry:
 def beam_entry(index: int, table: schema.BeamTable) -> BeamEntry:
     """An entry of ``[[beams]]``."""
     path: Path = ("beams", index)
-    keys = ("span", "unloaded", "loads_complete", "torsion", "slab_flange")
+    keys = ("span", "unloaded", "loads_complete", "torsion", "slab_flange", "slab_bars")
     _states_something(path, table, keys)
+    if table.slab_bars and table.slab_flange == "none":
+        raise FaultError(
+            (*path, "slab_bars"),
+            "counts only where slab counts as a flange: slab_flange = false says that none does",
+        )
     return BeamEntry(
         **head(path, table),
         span=table.span,
@@ -78,6 +83,7 @@ def beam_entry(index: int, table: schema.BeamTable) -> BeamEntry:
         loads_complete=table.loads_complete,
         torsion=table.torsion,
         slab_flange=table.slab_flange,
+        slab_bars=table.slab_bars,
     )
 
 

@@ -29,6 +29,10 @@ SlabFlange = Literal["none", "level", "on top"]
 what lies on its top."""
 
 
+SlabBars = Literal["anchored"]
+"""What the engineer states of the bars of slabs that lie in the flange of a beam"""
+
+
 @dataclass(frozen=True, slots=True)
 class Selection:
     """Which beams an entry speaks of: marks, or an element query; exactly one is given."""
@@ -127,6 +131,7 @@ class BeamEntry:
     torsion: bool | None
     """True where loads act beside the web or the beam must twist to stand."""
     slab_flange: SlabFlange | None
+    slab_bars: SlabBars | None = None
 
 
 @dataclass(frozen=True, slots=True)

@@ -16,7 +16,8 @@ from pydantic import (
 
 from ifccheck.beam import CombinationKind, Face, Nature, SourceName, SupportKind
 from ifccheck.brief.mark_ranges import expanded
-from ifccheck.brief.model import Position, SlabFlange
+from ifccheck.brief.model import Position, SlabBars, SlabFlange
+from ifccheck.brief.places import did_you_mean
 from ifccheck.brief.quantities import (
     CONCRETE_STRENGTH,
     COVER,
@@ -83,6 +84,14 @@ def _slab_flange(value: object) -> SlabFlange:
     if not isinstance(value, bool):
         raise ValueError('must be true, false or "on top"')
     return "level" if value else "none"
+
+
+def _slab_bars(value: object) -> SlabBars:
+    """What is stated of the bars of slabs in a beam's flange."""
+    if value != "anchored":
+        hint = f": {did_you_mean(value, ['anchored'])}" if isinstance(value, str) else ""
+        raise ValueError(f'must be "anchored", or left out where they are not{hint}')
+    return "anchored"
 
 
 Name = Annotated[
@@ -223,6 +232,7 @@ class BeamTable(SelectingTable):
     loads_complete: bool | None = None
     torsion: bool | None = None
     slab_flange: Annotated[SlabFlange, PlainValidator(_slab_flange)] | None = None
+    slab_bars: Annotated[SlabBars, PlainValidator(_slab_bars)] | None = None
 
 
 class MaterialTable(MaterialsTable, SelectingTable):

@@ -121,6 +121,10 @@ def _defaults(models: Sequence[StarterModel], names: _Names) -> Iterator[str]:
         "Slabs that beams are cast with count as their flanges only where you say so."
     )
     yield "#slab_flanges = true"
+    yield from _prose(
+        "Bars and meshes of such slabs count as top steel only where an entry of [[beams]] says"
+        ' slab_bars = "anchored".'
+    )
 
 
 def _silence(models: Sequence[StarterModel], reason: str, names: _Names) -> str:

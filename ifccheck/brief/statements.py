@@ -37,6 +37,9 @@ class BeamStatement:
     """Loads act beside the web, or the beam must twist to stand."""
     slab_flange: SlabFlange | None = None
     """None where the default holds."""
+    slab_bars_from: str = ""
+    """Where the brief says that bars of slabs in its flange are anchored; empty where it does
+    not."""
     remarks: tuple[Remark, ...] = ()
 
 
@@ -112,6 +115,8 @@ def _say_of_beam(entry: BeamEntry) -> dict[str, Said]:
     }
     if entry.slab_flange is not None:
         said["slab_flange"] = Said(entry.slab_flange, entry.slab_flange, entry.place)
+    if entry.slab_bars is not None:
+        said["slab_bars"] = Said(entry.slab_bars, entry.slab_bars, entry.place)
     if entry.span is not None:
         said["span"] = Said(entry.span, show(entry.span, "length"), entry.place)
     return said
@@ -138,6 +143,7 @@ def _statement(
         loads_complete="loads_complete" in said and said["loads_complete"].value,
         torsion=bool(torsion or eccentric),
         slab_flange=said["slab_flange"].value if "slab_flange" in said else None,
+        slab_bars_from=f"brief, {said['slab_bars'].place}" if "slab_bars" in said else "",
         remarks=tuple(remarks),
     )
 

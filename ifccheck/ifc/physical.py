@@ -108,7 +108,7 @@ def _along(model: Measured) -> dict[int, tuple[Bars, ...]]:
     _judge_others(model, is_main, leaning)
     _judge_roles(model, is_main, TIE_ROLES, "a stirrup by its role, but runs along the beam")
     model.reason(np.flatnonzero(_run_outside(model, runs)), OUTSIDE)
-    _judge_data(model, is_main)
+    judge_data(model, is_main)
     return longitudinal_bars(model, runs)
 
 
@@ -128,7 +128,7 @@ def _across(
     model = replace(model, rows=tied.rows, bar=places.table.bar[tied.rows.strand])
     counted = _judge_legs(model, ties)
     model.reason(np.flatnonzero(outside & counted), OUTSIDE)
-    _judge_data(model, counted)
+    judge_data(model, counted)
     return stirrups_by_zone(model, ties.take(counted), legs, bars)
 
 
@@ -215,7 +215,7 @@ def _outside(model: Measured, anywhere: bool = False) -> Bools:
     return count_by_row(lines.row, outside, lines.count) > 0
 
 
-def _judge_data(model: Measured, used: Bools) -> None:
+def judge_data(model: Measured, used: Bools) -> None:
     """Tell where the sources of size and grade disagree or could not be read."""
     table, strand, rows = model.places.table, model.rows.strand, np.flatnonzero(used)
     sizes, grades = model.places.size[strand[rows]], model.places.grade[strand[rows]]

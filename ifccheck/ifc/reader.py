@@ -21,6 +21,7 @@ from ifccheck.ifc.products import Product, read_products
 from ifccheck.ifc.profiles import Profiles
 from ifccheck.ifc.reinforcement import read_reinforcement
 from ifccheck.ifc.scoping import NO_CHOICE, Choice, candidates, parted
+from ifccheck.ifc.slab_bars import SlabBars, read_slab_bars
 from ifccheck.ifc.slabs import SlabReader
 from ifccheck.ifc.step_table import StepTable
 from ifccheck.ifc.storeys import Storeys
@@ -71,11 +72,8 @@ def _read(
     products = read_products(context, members_of(opened.file))
     beams_by_class = [one for one in products if context.classes.is_any(one.ifc_class, BEAMS)]
     own = candidates(context, products, beams_by_class, choice)
-    if own and "length" not in context.units.declared:
-        raise ModelError(
-            f"{opened.file_name}: declares no unit of length, so no beam can be measured; "
-            "assign units to its project"
-        )
+    if own:
+        _require_length_unit(context, opened)
     profiles, storeys = Profiles(context.placements), Storeys(context)
     bodies = PlainBodies(context, profiles, products)
     reader = BeamReader(context, profiles, storeys, opened.name, bodies)
@@ -93,12 +91,13 @@ def _read(
         else:
             left_out.append(found.beam)
     members = MemberReader(context, profiles, storeys, bodies).read(products, known)
+    reinforced, unread = _reinforced(context, beams, mapping, statements, choice)
     return Model(
         name=opened.name,
         file_name=opened.file_name,
         schema=opened.schema,
         sha256=opened.sha256,
-        beams=tuple(_reinforced(context, beams, mapping, statements)),
+        beams=reinforced,
         out_of_scope=tuple(left_out),
         members=members.members,
         storeys=storeys.all,
@@ -108,10 +107,19 @@ def _read(
             *_repeats(own),
             *reader.remarks,
             *members.remarks,
+            *unread,
         ),
         unmeasured=members.unmeasured,
         slabs=SlabReader(context, profiles).read() if beams and choice.slabs else (),
     )
+
+
+def _require_length_unit(context: Context, opened: OpenedModel) -> None:
+    if "length" not in context.units.declared:
+        raise ModelError(
+            f"{opened.file_name}: declares no unit of length, so no beam can be measured; "
+            "assign units to its project"
+        )
 
 
 def _identified(products: Sequence[Product]) -> Iterator[tuple[Product, Identity]]:
@@ -148,7 +156,8 @@ def _reinforced(
     beams: Sequence[Beam],
     mapping: Mapping[str, str],
     statements: StepTable | None,
-) -> Iterator[Beam]:
+    choice: Choice,
+) -> tuple[tuple[Beam, ...], tuple[Remark, ...]]:
     """The beams with the reinforcement that the model holds for those whose body is read."""
     frames = {
         beam.step_id: BeamFrame(beam.guid, beam.axis, beam.runs)
@@ -156,11 +165,23 @@ def _reinforced(
         if beam.axis is not None
     }
     found = read_reinforcement(context, frames, mapping, statements)
-    for beam in beams:
-        sources = found.get(beam.step_id, ())
-        if beam.ordinal:
-            sources = tuple(_by_key(source, beam.key) for source in sources)
-        yield _with(beam, sources)
+    whole = [_with(beam, _of_key(beam, found.get(beam.step_id, ()))) for beam in beams]
+    if not choice.slabs:
+        return tuple(whole), ()
+    of_slabs, remarks = read_slab_bars(context, frames, statements)
+    return tuple(_with_slab_bars(beam, of_slabs.get(beam.step_id)) for beam in whole), remarks
+
+
+def _of_key(beam: Beam, sources: tuple[Reinforcement, ...]) -> tuple[Reinforcement, ...]:
+    return tuple(_by_key(source, beam.key) for source in sources) if beam.ordinal else sources
+
+
+def _with_slab_bars(beam: Beam, found: SlabBars | None) -> Beam:
+    if found is None:
+        return beam
+    return replace(
+        beam, slab_bars=found.bars, slab_bar_doubts=found.doubts, slab_bar_fault=found.fault
+    )
 
 
 def _with(beam: Beam, sources: tuple[Reinforcement, ...]) -> Beam:

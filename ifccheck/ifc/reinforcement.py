@@ -89,7 +89,7 @@ def _tied_bars(
     context: Context, finder: Hosts, statements: StepTable | None
 ) -> tuple[Ints, BarHosts]:
     """Bars that may lie in one of the beams, by STEP ids, and how each is tied."""
-    bars = _all_bars(context, statements)
+    bars = all_bars(context, statements)
     bars = np.concatenate((bars, _tied_meshes(context, finder)))
     ties = finder.of_all(bars)
     near = ~ties.tied("elsewhere")
@@ -98,13 +98,18 @@ def _tied_bars(
 
 def _tied_meshes(context: Context, finder: Hosts) -> Ints:
     """STEP ids of meshes of beams; one that no relation ties is that of a slab or a wall."""
-    meshes = np.array([mesh.id() for mesh in _instances(context, MESH)], dtype=np.intp)
+    meshes = all_meshes(context)
     if not len(meshes):
         return meshes
     return meshes[finder.of_all(meshes).tied("part", "beside")]
 
 
-def _all_bars(context: Context, statements: StepTable | None) -> Ints:
+def all_meshes(context: Context) -> Ints:
+    """STEP ids of meshes."""
+    return np.array([mesh.id() for mesh in _instances(context, MESH)], dtype=np.intp)
+
+
+def all_bars(context: Context, statements: StepTable | None) -> Ints:
     """STEP ids of bars, and of other elements whose type is that of a bar."""
     bars = None if statements is None else statements.ids_of("IFCREINFORCINGBAR")
     if bars is None:

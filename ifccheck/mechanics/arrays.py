@@ -13,6 +13,9 @@ Ints = npt.NDArray[np.intp]
 Bools = npt.NDArray[np.bool_]
 
 ANCHOR_STRAIGHT, ANCHOR_HOOK, ANCHOR_FULL = 0, 1, 2
+OWN, NEAR_WEB, IN_FLANGE = 0, 1, 2
+"""Where the bars of a layer lie: in the beam itself, in slab that is its flange within the reach of
+the web, in that slab farther out"""
 
 
 @dataclass(frozen=True, slots=True)
@@ -66,6 +69,9 @@ class Members:
     layer_beyond: Floats | None = None
     """Length of the same bars beyond start and end of the layer [mm] (B, L, 2), where they go on
     bent or at another height and develop too; None where none does"""
+    layer_place: Ints | None = None
+    """OWN, NEAR_WEB or IN_FLANGE (B, L); None where all are the beams' own. Bars of a slab count
+    where the top is in tension, never in shear; in longitudinal tension those near the web"""
 
 
 @dataclass(frozen=True, slots=True)

@@ -12,11 +12,14 @@ from ifccheck.analysis.loads import LoadTable, join_loads, load_table, self_weig
 from ifccheck.analysis.spans import FREE, SpanTable, span_table
 from ifccheck.analysis.stations import SAME_PLACE, StationTable
 from ifccheck.analysis.stiffness import Curvature
-from ifccheck.beam import SELF, Anchor, Case, Nature
+from ifccheck.beam import SELF, Anchor, BarPlace, Case, Nature
 from ifccheck.mechanics.arrays import (
     ANCHOR_FULL,
     ANCHOR_HOOK,
     ANCHOR_STRAIGHT,
+    IN_FLANGE,
+    NEAR_WEB,
+    OWN,
     Bools,
     Floats,
     Ints,
@@ -50,6 +53,7 @@ _ANCHOR = {
     Anchor.HOOK: ANCHOR_HOOK,
     Anchor.ANCHORED: ANCHOR_FULL,
 }
+_PLACE: dict[BarPlace, int] = {"own": OWN, "near web": NEAR_WEB, "in flange": IN_FLANGE}
 
 
 @dataclass(frozen=True, slots=True)
@@ -237,6 +241,7 @@ def _layers(subjects: Sequence[Subject]) -> dict[str, Any]:
     beyond = np.stack(
         [packed(bar.start_beyond for bar in bars), packed(bar.end_beyond for bar in bars)], axis=-1
     )
+    place = packed(_PLACE[bar.place] for bar in bars)
     anchors = [
         packed(_ANCHOR[end] for end in ends).astype(np.intp)
         for ends in ([bar.start_anchor for bar in bars], [bar.end_anchor for bar in bars])
@@ -260,6 +265,7 @@ def _layers(subjects: Sequence[Subject]) -> dict[str, Any]:
         "layer_bundle": packed(bonds.bundle, 1.0).astype(np.intp),
         "layer_lapped": packed(bonds.lapped).astype(np.bool_),
         "layer_beyond": beyond if beyond.any() else None,
+        "layer_place": place.astype(np.intp) if place.any() else None,
     }
 
 
@@ -331,6 +337,8 @@ def checked_stretch(members: Members, spans: SpanTable, lengths: Floats) -> Floa
     rest all the same.
     """
     present = members.layer_area > 0.0
+    if members.layer_place is not None:
+        present &= members.layer_place == OWN
     first = np.where(present, members.layer_start, np.inf).min(axis=1)
     last = np.where(present, members.layer_end, -np.inf).max(axis=1)
     start_tip = (spans.start_kind == FREE) & (first - spans.start <= END_COVER)

@@ -108,7 +108,7 @@ def _support(name: str, label: str, support: Support) -> BasisItem:
 def _steel(subject: Subject) -> list[BasisItem]:
     lower: list[Bars] = []
     upper: list[Bars] = []
-    for bar in subject.bars:
+    for bar in (bar for bar in subject.bars if bar.place == "own"):
         (lower if bar.z < _middle(subject, bar) else upper).append(bar)
     source = subject.reinforcement_source
     return [
@@ -127,9 +127,35 @@ def _body(subject: Subject) -> Iterator[BasisItem]:
         text = "; ".join(map(_width_text, subject.body.widths)) or "none"
         label = "overhangs of it that count in compression"
         yield BasisItem("FlangeOverhangs", label, text, "text", subject.body.width_source)
+    if subject.slab_bars:
+        yield _slab_bars(subject)
     if subject.beam.openings:
         text = "; ".join(map(_opening_text, subject.beam.openings))
         yield BasisItem("Openings", "openings taken off", text, "text", "model")
+
+
+def _slab_bars(subject: Subject) -> BasisItem:
+    """Bars of slabs within the flange, alike ones of both sides together."""
+    alike: dict[tuple[object, ...], list[Bars]] = {}
+    for bar in subject.slab_bars:
+        ends = (round(bar.z), bar.start, bar.end, bar.place)
+        alike.setdefault((bar.designation, bar.diameter, bar.area, *ends), []).append(bar)
+    text = "; ".join(map(_slab_row, alike.values()))
+    counts = subject.slab_bars_from
+    text += ": counted where the top is in tension" if counts else ": not counted"
+    within = subject.body.steel_source if subject.body else ""
+    source = "; ".join(filter(None, ("model", counts, within)))
+    return BasisItem("SlabBars", "slab bars within the flange", text, "text", source)
+
+
+def _slab_row(bars: Sequence[Bars]) -> str:
+    first, count = bars[0], sum(bar.count for bar in bars)
+    layer = _layer_text(
+        count, first.designation, first.diameter, first.z, first.z, first.start, first.end
+    )
+    name, _, where = layer.partition(" at ")
+    near = "near the web" if first.place == "near web" else "farther out"
+    return f"{name}, {show(count * first.area, 'area')} at {where}, {near}"
 
 
 def _flange_text(flange: Flange) -> str:

@@ -61,6 +61,10 @@ class Subject:
     """One for each entry of ``stirrups``"""
     reasons: tuple[Reason, ...]
     remarks: tuple[Remark, ...]
+    slab_bars: tuple[Bars, ...] = ()
+    """Bars of slabs that lie within its flange; where they count they are among ``bars`` too"""
+    slab_bars_from: str = ""
+    """Where the brief says that they are anchored; empty where they do not count"""
     body: RatedBody | None = None
     """What is rated of the beam where that is not its body alone; None where it is"""
 

@@ -25,8 +25,12 @@ def with_widths(body: RatedBody, span: Span, standard: Standard) -> RatedBody:
                 widths[-1] = replace(widths[-1], end=width.end)
             else:
                 widths.append(width)
-    source = f"{standard.title}, {standard.flange_clause}"
-    return replace(body, widths=tuple(widths), width_source=source)
+    return replace(
+        body,
+        widths=tuple(widths),
+        width_source=f"{standard.title}, {standard.flange_clause}",
+        steel_source=f"{standard.title}, {standard.flange_steel_clause}",
+    )
 
 
 def _width(run: Run, span: float, standard: Standard) -> FlangeWidth:

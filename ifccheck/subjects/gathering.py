@@ -39,6 +39,7 @@ from ifccheck.standards import Standard
 from ifccheck.subjects.concrete import Concrete, concrete_of
 from ifccheck.subjects.findings import Findings, Sources
 from ifccheck.subjects.flange_widths import with_widths
+from ifccheck.subjects.slab_steel import SlabSteel, slab_steel_of
 from ifccheck.subjects.steel import Steel, steel_of
 
 Row = TypeVar("Row", Load, Remark)
@@ -129,10 +130,11 @@ def _one(
     _judge_standing(beam, sources, statement, standing, findings)
     steel = steel_of(beam, sources, findings) if beam.runs else None
     _judge_loads(beam, sources, statement, standing, loads, findings)
-    net = Net()
+    net, more = Net(), SlabSteel()
     if standing and steel:
         slab = counted(beam, _asked(beam, sources, statement, concrete), loads)
         net = _net(beam, sources, standing, loads, steel, slab, findings)
+        more = slab_steel_of(beam, net.body, steel, statement, sources, findings)
     findings.take(net)
     if standing is None or steel is None or any(reason.blocking for reason in findings.reasons):
         return Unrated(beam, _distinct(findings.reasons), tuple(findings.remarks))
@@ -144,7 +146,7 @@ def _one(
         direct=pressed_ends(contacts),
         side_loaded=loaded_from_side(contacts, beam.length, standing.bearings),
         statements=stated,
-        bars=steel.bars,
+        bars=(*steel.bars, *more.counted),
         stirrups=steel.stirrups,
         stirrups_known=steel.stirrups_known,
         silent=steel.silent,
@@ -154,10 +156,12 @@ def _one(
         unit_weight=concrete.unit_weight,
         density_factor=concrete.density_factor,
         aggregate_size=concrete.aggregate_size,
-        bar_yield=steel.bar_yield,
+        bar_yield=(*steel.bar_yield, *more.yields),
         stirrup_yield=steel.stirrup_yield,
         reasons=_distinct(findings.reasons),
         remarks=tuple(findings.remarks),
+        slab_bars=more.listed,
+        slab_bars_from=more.source,
         body=net.body,
     )
 
@@ -233,6 +237,8 @@ def _stated(statement: BeamStatement) -> tuple[str, ...]:
         found.append("unloaded = true: self weight alone is meant")
     if statement.loads_complete:
         found.append("loads_complete = true: what rests on the beam is in the loads given")
+    if statement.slab_bars_from:
+        found.append('slab_bars = "anchored": bars of slabs in its flange are anchored')
     return tuple(found)
 
 

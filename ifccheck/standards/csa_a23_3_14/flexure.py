@@ -71,7 +71,7 @@ def _check_sagging(prepared: Prepared, demand: Demand) -> Check:
 
 def _check_hogging(prepared: Prepared, demand: Demand) -> Check:
     """Flexure with the top in tension."""
-    return _check(prepared, prepared.hogging, _hogging(demand))
+    return _check(prepared, prepared.top_in_flexure, _hogging(demand))
 
 
 def _sagging(demand: Demand) -> Floats:
@@ -319,7 +319,8 @@ class _Resistances:
 
 
 def _resistances(prepared: Prepared) -> _Resistances:
-    return _Resistances(prepared.sagging.moment_resistance, prepared.hogging.moment_resistance)
+    top = prepared.top_in_flexure.moment_resistance
+    return _Resistances(prepared.sagging.moment_resistance, top)
 
 
 def _quick(resists: _Resistances, demand: Demand) -> tuple[tuple[Floats, Floats], ...]:

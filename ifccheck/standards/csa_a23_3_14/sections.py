@@ -8,8 +8,9 @@ from dataclasses import dataclass, fields, replace
 import numpy as np
 
 from ifccheck.mechanics.arrays import (
-    ANCHOR_FULL,
-    ANCHOR_HOOK,
+    IN_FLANGE,
+    NEAR_WEB,
+    OWN,
     Bools,
     Chords,
     Floats,
@@ -34,6 +35,7 @@ from ifccheck.standards.csa_a23_3_14.faces import (
     take_rows,
     top_steel,
 )
+from ifccheck.standards.csa_a23_3_14.layers import layers_of, with_bars
 
 AT_ONCE = 65536
 """Stations worked on together, so that their arrays stay in the processor's cache."""
@@ -81,6 +83,22 @@ class Prepared:
     """Faces and critical sections as seen from each station: critical.surroundings(...)"""
     chords: Chords | None
     """How the chords are inclined; None where none is"""
+    hogging_with_slab: FaceState | None = None
+    """The top in tension with all bars of slabs that count; None where none does"""
+    top_force: Floats | None = None
+    """phi_s fy As of the top in tension, developed, with the bars of slabs that lie near the web
+    [N]; None where none does"""
+
+    @property
+    def top_in_flexure(self) -> FaceState:
+        """The top in tension, as it counts in flexure"""
+        return self.hogging_with_slab or self.hogging
+
+    def tension_force(self, *, top: bool) -> Floats:
+        """phi_s fy As of one face, developed, as it counts in longitudinal tension [N]"""
+        if top:
+            return self.hogging.tension_force if self.top_force is None else self.top_force
+        return self.sagging.tension_force
 
     def take(self, rows: Ints) -> Prepared:
         """The same at the given stations; rows may repeat."""
@@ -107,9 +125,12 @@ def prepare(members: Members, stations: Stations, options: Options) -> Prepared:
     and equally developed bars. Stations are worked off by the number of layers and strips that
     they really have, so that one intricate section does not slow the others. A section that an
     opening divides is not rated in shear where less than its height is said to be lost.
+    Bars of slabs count in nothing but the resistance of the top in tension, and in its
+    longitudinal tension where they lie near the web.
     """
     strength = members.concrete_strength[stations.beam]
-    bars = _layers(members)
+    every, members = members, with_bars(members, OWN)
+    bars = layers_of(members)
     *faces, steel_yield = _faces(members, bars, stations)
     strips = members.strips
     lost = stations.shear_loss
@@ -136,7 +157,29 @@ def prepare(members: Members, stations: Stations, options: Options) -> Prepared:
         shear_loss=lost,
         surroundings=_surroundings(stations, sagging, hogging, options),
         chords=stations.chords,
+        hogging_with_slab=_top_with(every, IN_FLANGE, stations),
+        top_force=_force_with(_top_with(every, NEAR_WEB, stations), faces[1]),
     )
+
+
+def _top_with(members: Members, farthest: int, stations: Stations) -> FaceState | None:
+    """The top in tension with bars of slabs; None where there are none."""
+    if members.layer_place is None:
+        return None
+    members = with_bars(members, farthest)
+    return _faces(members, layers_of(members), stations)[1]
+
+
+def _force_with(near: FaceState | None, own: FaceState) -> Floats | None:
+    """Force of the top in tension with the bars of slabs near the web [N].
+
+    The tension is told with dv to the beam's own bars: what bars of slabs take dv from takes as
+    much of their force.
+    """
+    if near is None:
+        return None
+    force = near.tension_force * np.minimum(near.shear_depth / own.shear_depth, 1.0)
+    return np.maximum(force, own.tension_force)
 
 
 def with_options(prepared: Prepared, options: Options) -> Prepared:
@@ -157,7 +200,8 @@ def critical_distance(members: Members, stations: Stations) -> Floats:
     ----------
     CSA A23.3-14, 11.3.2
     """
-    bars, distance = _layers(members), np.empty(stations.x.shape)
+    members = with_bars(members, OWN)
+    bars, distance = layers_of(members), np.empty(stations.x.shape)
     for rows, layers, strips in _groups(members, stations):
         section, state = _distinct(members, bars, stations, rows, layers, strips)
         soffit, top = soffit_steel(section), top_steel(section)
@@ -204,72 +248,6 @@ def _lever(face: FaceState) -> Floats:
     return np.where(
         steel, face.moment_resistance / np.where(steel, face.tension_force, 1.0), np.nan
     )
-
-
-def _layers(members: Members) -> Layers:
-    """Layers with their development lengths from either end."""
-    m = members
-    strength = m.concrete_strength[:, None]
-    density = m.density_factor[:, None]
-    bundle = np.ones_like(m.layer_area, dtype=np.intp) if m.layer_bundle is None else m.layer_bundle
-    longer = _longer(m, bundle)
-    straight = longer * development.development_length(
-        diameter=m.layer_diameter,
-        steel_yield=m.layer_yield,
-        concrete_strength=strength,
-        # a bundle counts as one bar of equal area, whose cover is told in its own diameters
-        cover_distance=m.layer_cover_distance / np.sqrt(bundle),
-        top_bar=m.layer_height > development.DEPTH_BELOW_TOP_BARS,
-        density_factor=density,
-        bar_area=m.layer_bar_area,
-    )
-    hooked = longer * development.hook_development_length(
-        diameter=m.layer_diameter,
-        steel_yield=m.layer_yield,
-        concrete_strength=strength,
-        density_factor=density,
-    )
-    least = longer * development.compression_development_length(
-        diameter=m.layer_diameter, steel_yield=m.layer_yield, concrete_strength=strength
-    )
-    pulled = [
-        np.select(
-            [m.layer_area <= 0.0, anchor == ANCHOR_FULL, anchor == ANCHOR_HOOK],
-            [np.inf, 0.0, hooked],
-            straight,
-        )
-        for anchor in (m.layer_start_anchor, m.layer_end_anchor)
-    ]
-    pushed = [np.where(length > 0.0, np.maximum(length, least), length) for length in pulled]
-    return Layers(
-        m.layer_height, m.layer_area, m.layer_diameter, m.layer_yield, m.layer_start, m.layer_end,
-        *(*pulled, *pushed, *_beyond(m)),
-    )  # fmt: skip
-
-
-def _longer(members: Members, bundle: Ints) -> Floats:
-    """How many times longer the bars of each layer develop for being bundled or lapped.
-
-    Every tension lap is taken as one of class B (12.15.2); bars develop over the whole of it, so
-    that two of them give no more than one where the lap is just as long as that class asks for.
-    """
-    factor = development.bundle_factor(bundle)
-    if members.layer_lapped is None:
-        return factor
-    return np.where(members.layer_lapped, development.LAPPED, 1.0) * factor
-
-
-def _beyond(members: Members) -> tuple[Floats, Floats]:
-    """Length beyond start and end of each layer over which its bars develop too [mm].
-
-    What goes on may be a top bar though the layer is none, and develops over 1.3 times the length
-    there (12.2.4).
-    """
-    if members.layer_beyond is None:
-        nothing = np.zeros(members.layer_area.shape)
-        return nothing, nothing
-    counting = members.layer_beyond / development.TOP_BAR_FACTOR
-    return counting[..., 0], counting[..., 1]
 
 
 def _faces(

@@ -170,7 +170,7 @@ def web(prepared: Prepared, *, top: bool) -> Web:
                 web_width=face.web_width,
                 shear_depth=face.shear_depth,
             ),
-            face.tension_force,
+            prepared.tension_force(top=top),
             _lever_arm(peak, face),
         ]
     )
@@ -222,7 +222,7 @@ def _seldom(
         plain_unknown=np.isnan(plain),
         start_distance=around.start_distance,
         end_distance=around.end_distance,
-        other_steel=other.tension_force,
+        other_steel=prepared.tension_force(top=not top),
         other_lever_arm=_lever_arm(other_peak, other),
         beyond_simplified=_beyond_simplified(prepared) & around.simplified,
         beyond_materials=_beyond_materials(prepared),
