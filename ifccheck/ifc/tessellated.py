@@ -25,23 +25,32 @@ STREAMS = (1, 2)
 def _quiet() -> Iterator[None]:
     """Keep off our output what the engine prints by itself, past Python's own streams."""
     _flush()
-    kept = [os.dup(stream) for stream in STREAMS]
+    kept = {stream: os.dup(stream) for stream in STREAMS if _is_open(stream)}
     nowhere = os.open(os.devnull, os.O_WRONLY)
     try:
-        for stream in STREAMS:
+        for stream in kept:
             os.dup2(nowhere, stream)
         yield
     finally:
         _flush()
-        for stream, own in zip(STREAMS, kept, strict=True):
+        for stream, own in kept.items():
             os.dup2(own, stream)
             os.close(own)
         os.close(nowhere)
 
 
+def _is_open(stream: int) -> bool:
+    """Whether a descriptor is open: a service may run without one."""
+    try:
+        os.fstat(stream)
+    except OSError:
+        return False
+    return True
+
+
 def _flush() -> None:
     """Write out what Python and the C library hold back."""
-    for stream in (sys.stdout, sys.stderr):
+    for stream in filter(None, (sys.stdout, sys.stderr)):
         stream.flush()
     library = ctypes.cdll.msvcrt if sys.platform == "win32" else ctypes.CDLL(None)
     library.fflush(None)

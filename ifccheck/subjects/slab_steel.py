@@ -60,8 +60,10 @@ def slab_steel_of(
     elif source:
         given = tuple(_yields(listed, sources.materials.get(beam.key, NO_MATERIAL), sources))
         fault = _fault(beam, listed, given)
-        texts += [fault] if fault else _told(steel)
         yields = () if fault else given
+        texts += [fault] if fault else _doubled(steel)
+    if yields:
+        findings.remarks.append(Remark(beam.key, STAGE, HOW, "assumption"))
     findings.remarks += [Remark(beam.key, STAGE, text, "doubt") for text in texts]
     for one in dict.fromkeys(one for one in yields if one.assumed):
         findings.assume("yield strength of the bars of slabs", one)
@@ -76,8 +78,7 @@ def _fault(beam: Beam, listed: tuple[Bars, ...], yields: tuple[Given, ...]) -> s
     return "" if known else NO_YIELD
 
 
-def _told(steel: Steel) -> Iterator[str]:
-    yield HOW
+def _doubled(steel: Steel) -> Iterator[str]:
     if steel.source != "bars":
         yield TWICE.format(source=steel.source)
 
