@@ -10,7 +10,7 @@ from hypothesis import given
 from hypothesis import strategies as st
 
 from ifccheck.ifc import step_bytes
-from ifccheck.ifc.step_bytes import places, whole_numbers
+from ifccheck.ifc.step_bytes import places, stretches, whole_numbers
 
 GREATEST = 2**31 - 1
 pieces = st.one_of(
@@ -47,3 +47,15 @@ def test_pieces_hide_nothing(piece: int, monkeypatch: pytest.MonkeyPatch) -> Non
     assert at.tolist() == [found.start() for found in re.finditer(b"#", data)]
     assert whole_numbers(array, at + 1, GREATEST)[0].tolist() == list(range(0, 10**6, 7919))
     assert places(array[:0], ord("#")).tolist() == []
+
+
+@given(st.binary(max_size=40), st.data(), st.integers(1, 24))
+def test_stretches_are_slices_with_zeros_behind_the_end(
+    text: bytes, drawn: st.DataObject, size: int
+) -> None:
+    at = drawn.draw(st.lists(st.integers(0, len(text) + 9), max_size=6))
+    data = np.frombuffer(text, np.uint8)
+    found = stretches(data, np.array(at, np.int64), size)
+    assert [row.tobytes() for row in found] == [
+        text[first : first + size].ljust(size, b"\0") for first in at
+    ]

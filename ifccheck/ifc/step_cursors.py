@@ -13,6 +13,7 @@ import numpy as np
 import numpy.typing as npt
 
 from ifccheck.ifc.bar_paths import Bools, Floats, Ints
+from ifccheck.ifc.step_bytes import stretches
 
 Bytes = npt.NDArray[np.uint8]
 Words = npt.NDArray[np.uint64]
@@ -200,15 +201,8 @@ class Cursors:
 
 def words_at(data: Bytes, at: Ints, count: int) -> Iterator[Words]:
     """Words of eight bytes each from offsets on, the first byte lowest; zeros behind the end."""
-    if int(at.max(initial=0)) + (count + 1) * WORD > len(data):
-        data = np.append(data, np.zeros((count + 1) * WORD, dtype=np.uint8))
-    aligned = data[: len(data) // WORD * WORD].view("<u8")
-    index, shift = at >> 3, (at << 3 & 56).astype(np.uint64)  # the word, and the bit in it
-    words = aligned.take(index, mode="clip")
-    for place in range(1, count + 1):
-        following = aligned.take(index + place, mode="clip")
-        yield (words >> shift) | (following << (np.uint64(64) - shift))  # by 64: none of it
-        words = following
+    words = stretches(data, at, count * WORD).view("<u8")
+    yield from (words[:, place] for place in range(count))
 
 
 def _next_quotes(data: Bytes, at: Ints) -> tuple[Ints, Bools]:

@@ -15,7 +15,7 @@ import numpy as np
 from ifccheck.ifc.bar_paths import Ints
 from ifccheck.ifc.equal_rows import first_of_each_text, of_like_width
 from ifccheck.ifc.lexer import Scan
-from ifccheck.ifc.step_bytes import Offsets
+from ifccheck.ifc.step_bytes import Offsets, stretches
 from ifccheck.ifc.step_cursors import IS_BLANK, WORD, Bytes, Cursors
 
 _POWERS_OF_TEN = 10 ** np.arange(10)
@@ -163,9 +163,7 @@ def gathered(data: Bytes, start: Ints, stop: Ints) -> Rests:
 
 def _windows(data: Bytes, start: Ints, width: Ints, size: int) -> Bytes:
     """Bytes from each offset on, with zeros behind the width of each (N, size)."""
-    if int(start.max()) + size > len(data):
-        data = np.append(data, np.zeros(size, dtype=np.uint8))
-    windows: Bytes = np.lib.stride_tricks.sliding_window_view(data, size)[start]
+    windows = stretches(data, start, size)
     least = int(width.min())
     behind = np.arange(least, size) >= width[:, None]
     windows[:, least:][behind] = 0
