@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
-from typing import Self
+from typing import Self, TypeVar
 
 import numpy as np
 import numpy.typing as npt
@@ -11,11 +11,19 @@ import numpy.typing as npt
 Floats = npt.NDArray[np.float64]
 Ints = npt.NDArray[np.intp]
 Bools = npt.NDArray[np.bool_]
+Scalar = TypeVar("Scalar", bound=np.generic)
 
 ANCHOR_STRAIGHT, ANCHOR_HOOK, ANCHOR_FULL = 0, 1, 2
 OWN, NEAR_WEB, IN_FLANGE = 0, 1, 2
 """Where the bars of a layer lie: in the beam itself, in slab that is its flange within the reach of
 the web, in that slab farther out"""
+
+
+def rows_of(values: npt.NDArray[Scalar], rows: Ints) -> npt.NDArray[Scalar]:
+    """The given rows of the first axis, laid out in memory so that sums over the others are
+    quick."""
+    taken: npt.NDArray[Scalar] = values.T.take(rows, axis=-1, mode="clip").T
+    return taken
 
 
 @dataclass(frozen=True, slots=True)

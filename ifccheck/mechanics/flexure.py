@@ -5,11 +5,11 @@ Knows no standard: the stress block, strains and factors are given.
 
 from __future__ import annotations
 
-from dataclasses import dataclass, fields
+from dataclasses import dataclass
 
 import numpy as np
 
-from ifccheck.mechanics.arrays import Bools, Floats, Ints
+from ifccheck.mechanics.arrays import Bools, Floats, Ints, rows_of
 from ifccheck.mechanics.width_profile import compression_block, width_at
 
 TOLERANCE = 1e-12
@@ -86,11 +86,13 @@ class _Sections:
     block_stress: Floats
     block_factor: Floats
 
-    def take(self, rows: Bools | Ints | slice) -> _Sections:
+    def take(self, rows: Ints) -> _Sections:
         """The same at the given rows, laid out in memory so that sums over layers are quick."""
-        return _Sections(
-            *(np.asfortranarray(getattr(self, item.name)[rows]) for item in fields(self))
-        )
+        return _Sections(*(rows_of(getattr(self, name), rows) for name in self.__slots__))
+
+    def laid_out(self) -> _Sections:
+        """The same, laid out in that way."""
+        return _Sections(*(np.asfortranarray(getattr(self, name)) for name in self.__slots__))
 
 
 def flexural_strength(
@@ -150,7 +152,7 @@ def flexural_strength(
         deepest=np.where(layer_area > 0.0, layer_depth, 0.0).max(axis=1, initial=0.0),
         block_stress=(stress * ones)[:, 0],
         block_factor=(beta * ones)[:, 0],
-    ).take(slice(None))
+    ).laid_out()
     return _strength(sections, _neutral_axis(sections))
 
 
@@ -220,7 +222,7 @@ def _search(sections: _Sections, c: Floats, capacity: Floats) -> Floats:
             break
         c = better
         if np.mean(finished) > FINISHED_SHARE:
-            going = ~finished
+            going = np.flatnonzero(~finished)
             sections, place, capacity = sections.take(going), place[going], capacity[going]
             low, high, c, finished = low[going], high[going], c[going], finished[going]
     return found

@@ -2,12 +2,14 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass, fields
+from collections.abc import Callable
+from dataclasses import dataclass
 from typing import Any, ClassVar, Protocol, TypeVar
 
 import numpy as np
+import numpy.typing as npt
 
-from ifccheck.mechanics.arrays import Bools, Floats, Ints
+from ifccheck.mechanics.arrays import Bools, Floats, Ints, rows_of
 from ifccheck.mechanics.flexure import (
     AT_MIDDLE,
     FlexuralStrength,
@@ -37,17 +39,28 @@ class _Dataclass(Protocol):
 
 
 State = TypeVar("State", bound=_Dataclass)
+Change = Callable[[npt.NDArray[Any]], npt.NDArray[Any]]
 
 
 def take_rows(state: State, rows: Ints | slice) -> State:
     """The same state at the given rows of the first axis of its arrays, nested states included."""
-    return type(state)(*(_taken(getattr(state, name), rows) for name in state.__dataclass_fields__))
+    if isinstance(rows, slice):
+        return _each_array(state, lambda values: values[rows])
+    return _each_array(state, lambda values: rows_of(values, rows))
 
 
-def _taken(value: Any, rows: Ints | slice) -> Any:
-    if isinstance(value, np.ndarray):
-        return value[rows]
-    return take_rows(value, rows) if hasattr(value, "__dataclass_fields__") else value
+def _twice(state: State) -> State:
+    """All rows of a state, and all of them once more."""
+    return _each_array(state, lambda values: np.concatenate([values, values]))
+
+
+def _each_array(state: State, change: Change) -> State:
+    def changed(value: Any) -> Any:
+        if isinstance(value, np.ndarray):
+            return change(value)
+        return _each_array(value, change) if hasattr(value, "__dataclass_fields__") else value
+
+    return type(state)(*(changed(getattr(state, name)) for name in state.__dataclass_fields__))
 
 
 @dataclass(frozen=True, slots=True)
@@ -139,9 +152,7 @@ class Layers:
 
     def take(self, rows: Ints, count: int) -> Layers:
         """The first layers of the given beams, laid out so that sums over layers are quick."""
-        return Layers(
-            *(np.asfortranarray(getattr(self, f.name)[rows, :count]) for f in fields(self))
-        )
+        return Layers(*(rows_of(getattr(self, name)[:, :count], rows) for name in self.__slots__))
 
 
 @dataclass(frozen=True, slots=True)
@@ -243,7 +254,7 @@ def sagging_and_hogging(section: SectionState) -> tuple[FaceState, FaceState]:
     one, both = section.overhang_left > 0.0, section.overhang_right > 0.0
     widest = np.select([one & both, one | both], [2.5, 1.5], np.inf)
     faces = _face(
-        take_rows(section, np.tile(np.arange(len(widest)), 2)),
+        _twice(section),
         np.concatenate([from_soffit(flipped(compressed)), from_soffit(section.strips)]),
         np.concatenate([_depth_from_top(section), _depth_from_soffit(section)]),
         np.concatenate([np.full_like(widest, np.inf), widest]),

@@ -17,6 +17,7 @@ from ifccheck.mechanics.arrays import (
     Ints,
     Members,
     Stations,
+    rows_of,
 )
 from ifccheck.mechanics.width_profile import SLIVER, bottom_of, gaps_of, top_of
 from ifccheck.standards.contract import Options
@@ -317,13 +318,13 @@ def _distinct(
         strength=members.concrete_strength[beam[first]],
         density_factor=members.density_factor[beam[first]],
         span=members.span[beam[first]],
-        strips=np.asfortranarray(members.strips[section[first], :strips]),
+        strips=rows_of(members.strips[:, :strips], section[first]),
         overhang_left=members.overhang_left[section[first]],
         overhang_right=members.overhang_right[section[first]],
         flange_thickness=members.flange_thickness[section[first]],
         bars=bars.take(beam[first], layers),
-        pulled=np.asfortranarray(pulled[first]),
-        pushed=np.asfortranarray(pushed[first]),
+        pulled=rows_of(pulled, first),
+        pushed=rows_of(pushed, first),
     )
     return section_state, state
 
@@ -339,7 +340,7 @@ def _developed(
 ) -> Floats:
     """Part of fy that each layer reaches at the stations."""
     start, end, start_length, end_length, start_beyond, end_beyond = (
-        np.asfortranarray(a[beam, :layers])
+        rows_of(a[:, :layers], beam)
         for a in (
             *(bars.start, bars.end, start_length, end_length),
             *(bars.start_beyond, bars.end_beyond),
