@@ -31,9 +31,13 @@ def ratings_csv(report: Report) -> str:
 def _cells(column: list[Cell]) -> list[Cell]:
     """A column as it is written; what is the same is looked at once."""
     distinct = set(column)
-    other: dict[Cell, Cell] = {each: neutral(each) for each in distinct if isinstance(each, str)}
+    other: dict[Cell, Cell] = {
+        each: told
+        for each in distinct
+        if isinstance(each, str) and (told := neutral(each)) is not each
+    }
     other |= {each: None for each in distinct if isinstance(each, float) and not isfinite(each)}
-    return [other.get(value, value) for value in column]
+    return [other.get(value, value) for value in column] if other else column
 
 
 def neutral(text: str) -> str:

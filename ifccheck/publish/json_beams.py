@@ -176,7 +176,13 @@ def _safe_load(safe: SafeLoad) -> str:
 
 def _remark(remark: Remark) -> str:
     beam = _text(remark.beam) if remark.beam is not None else "null"
-    return _REMARK % (beam, _text(remark.stage), _text(remark.kind), _text(remark.text))
+    return _remark_words(remark.stage, remark.kind, remark.text) % beam
+
+
+@lru_cache(maxsize=KEPT)
+def _remark_words(stage: str, kind: str, text: str) -> str:
+    """What remarks on many beams share, with a place for the beam."""
+    return _REMARK % ("%s", *(_text(each).replace("%", "%%") for each in (stage, kind, text)))
 
 
 @lru_cache(maxsize=KEPT)
