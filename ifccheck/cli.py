@@ -67,7 +67,7 @@ def main() -> None:
     multiple=True,
     help="Write only this result; may be repeated. All four are written without it.",
 )
-@uncollected()
+@uncollected(to_the_end=True)
 def rate(models: tuple[Path, ...], brief: Path, out: Path, only: tuple[str, ...]) -> None:
     """Rate every beam and write the rated model, the summary, the table and the data.
 

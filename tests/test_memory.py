@@ -33,6 +33,18 @@ def test_an_error_leaves_it_as_before_too(enabled: bool) -> None:
     assert gc.isenabled() == enabled
 
 
+def test_what_a_process_made_that_ends_is_never_walked(enabled: bool) -> None:
+    made: list[object] = []
+    try:
+        with uncollected(to_the_end=True):
+            made.append([made])
+        assert gc.isenabled() == enabled
+        assert not any(one is made for one in gc.get_objects())
+    finally:
+        gc.unfreeze()
+    assert any(one is made for one in gc.get_objects()), "the walk that is spared would find it"
+
+
 def test_a_function_may_be_called_again_and_again(enabled: bool) -> None:
     @uncollected()
     def inside() -> bool:

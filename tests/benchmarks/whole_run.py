@@ -8,6 +8,7 @@ frame generator that lies beside the checkout.
 
 from __future__ import annotations
 
+import gc
 import itertools
 import statistics
 import subprocess
@@ -110,7 +111,9 @@ def _stages(model: Path, brief: Path, out: Path) -> list[tuple[str, float]]:
     def say(stage: str) -> None:
         marks.append((time.process_time(), stage.split()[0]))
 
-    with uncollected():  # as the command runs
+    gc.unfreeze()  # what the round before left, which the command would not live to see
+    gc.collect()
+    with uncollected(to_the_end=True):  # as the command runs
         run = pipeline.rate([model], brief, say)
         pipeline.publish(run, out, ("model", "csv", "json"), say)
     marks.append((time.process_time(), ""))
