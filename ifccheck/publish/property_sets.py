@@ -129,7 +129,7 @@ def _least(safe_loads: tuple[SafeLoad, ...]) -> SafeLoad | None:
     return least if math.isfinite(least.factor) else None
 
 
-_factor = attrgetter("factor")
+_factor, _name = attrgetter("factor"), attrgetter("name")
 
 
 def _limit_states(rating: Rating) -> Properties:
@@ -154,7 +154,7 @@ def _safe_loads(safe_loads: tuple[SafeLoad, ...]) -> Properties:
 
 
 def _basis(items: tuple[BasisItem, ...]) -> Properties:
-    if len({item.name for item in items}) < len(items):
+    if len(set(map(_name, items))) < len(items):
         items = _told_apart(items)
     return tuple(chain.from_iterable(map(_of_item, items)))
 

@@ -24,6 +24,8 @@ from ifccheck.rating.runs import RunTable, run_at, sections_at
 
 def varies(runs: Sequence[Run]) -> bool:
     """Whether a beam has more than one section."""
+    if len(runs) == 1:
+        return runs[0].outline_end is not None
     return any(run.outline_end is not None or run.outline != runs[0].outline for run in runs)
 
 
