@@ -20,6 +20,7 @@ from ifccheck.ifc.opening import open_model
 from ifccheck.ifc.reader import read_model
 from ifccheck.ifc.scoping import Choice
 from ifccheck.mechanics.flexure import flexural_strength
+from ifccheck.publish.sheet_html import bar_row
 from ifccheck.rating.subject import Subject
 from tests.made_subjects import STANDARD, line, rated, subject
 from tests.models import (
@@ -203,6 +204,40 @@ def test_quick_and_full_checks_agree_with_bars_of_slabs() -> None:
         check = state_of.check(batch.prepared, batch.demand)
         (found,) = [s for s in answer.limit_states if s.name == state_of.name]
         assert np.nanmax(check.utilisation) == pytest.approx(found.utilisation, rel=1e-9)
+
+
+def test_the_table_of_steel_tells_bars_of_slabs_apart() -> None:
+    own, near, far = (
+        bar_row(replace(one, origin="bar X"), STEEL).origin for one in (bar(0.0), NEAR, FAR)
+    )
+    assert (own, near, far) == ("bar X", "slab, near web: bar X", "slab, in flange: bar X")
+
+
+def test_bars_of_slabs_change_nothing_else_in_a_batch() -> None:
+    """Random beams, every other with bars of slabs, rated together and without them: hogging and
+    longitudinal tension may get less, all else and all other beams stay."""
+    rng = np.random.default_rng(11)
+    with_bars, without = [], []
+    for number in range(16):
+        kind = {
+            "key": f"B{number}", "top": int(rng.integers(2, 5)), "bottom": int(rng.integers(2, 5)),
+            "strength": float(rng.uniform(25.0, 50.0)), "depth": 600.0,
+        }  # fmt: skip
+        bars = [
+            of_slab(float(rng.uniform(200.0, 450.0)), place, float(rng.uniform(460.0, 590.0)))
+            for place in rng.choice(["near web", "in flange"], 3)
+        ]
+        loads = tuple(one._replace(beam=kind["key"]) for one in flanged().loads)
+        without.append(replace(flanged(**kind), loads=loads))
+        with_bars.append(replace(flanged(*(bars if number % 2 else ()), **kind), loads=loads))
+    for number, (one, other) in enumerate(
+        zip(rated(*with_bars)[1], rated(*without)[1], strict=True)
+    ):
+        for found, plain in zip(one.limit_states, other.limit_states, strict=True):
+            if number % 2 and found.name in ("FlexureHogging", "LongitudinalTension"):
+                assert found.utilisation <= plain.utilisation * (1.0 + 1e-9)
+            else:
+                assert found.utilisation == pytest.approx(plain.utilisation, rel=2e-3)
 
 
 # Through the whole program -----------------------------------------------------------------------

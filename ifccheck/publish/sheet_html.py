@@ -285,7 +285,7 @@ def bar_row(bars: Bars, steel: Given | None) -> SteelRow:
         ),
         strength=_strength(steel),
         assumed=bool(steel and steel.assumed),
-        origin=bars.origin,
+        origin=bars.origin if bars.place == "own" else f"slab, {bars.place}: {bars.origin}",
     )
 
 
