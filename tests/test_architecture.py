@@ -26,7 +26,7 @@ ALLOWED: dict[str, set[str]] = {
     "result_sets": set(),
     "outputs": {"errors"},
     "memory": set(),
-    "ifc": RIM,
+    "ifc": RIM | {"mechanics"},
     "brief": RIM,
     "frame": RIM,
     "mechanics": {"errors", "units"},

@@ -47,7 +47,8 @@ class Shapes:
         placement = self._context.placements.matrix(entity)
         if not items:
             prism, told = prism_about_axis(self._context, self._profiles, entity)
-            return replace(straighten(prism, placement), remarks=(told,))
+            straight = straighten(prism, placement)
+            return replace(straight, remarks=(told, *straight.remarks))
         if len(items) > 1:
             raise UnreadableError(f"body of {len(items)} parts")
         prism = read_prism(self._context, self._profiles, items[0])

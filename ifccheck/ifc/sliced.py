@@ -22,9 +22,17 @@ from ifccheck.ifc.figures import Figure, alike, matched, polygon_of
 from ifccheck.ifc.placements import Matrix
 from ifccheck.ifc.solid_axis import span_direction
 from ifccheck.ifc.solids import Solid
-from ifccheck.ifc.straight import OBLIQUE_SHARE, STEEP_CUT, Straight, member_axes
+from ifccheck.ifc.straight import (
+    OBLIQUE_SHARE,
+    STEEP_CUT,
+    Straight,
+    member_axes,
+    rolled,
+    told_of_slip,
+)
 from ifccheck.ifc.tracing import SHORT, Piece, trace
 from ifccheck.ifc.vectors import Triple, added, combined, rounded
+from ifccheck.mechanics.inclination import inclination_of
 
 NOISE = 0.2
 """Sections that differ by less than this are one [mm]."""
@@ -62,6 +70,17 @@ def slice_solid(solid: Solid, placement: Matrix, axis: Cloud | None) -> Straight
         raise UnreadableError("body is a half-space alone")
     axes = member_axes(span_direction(parts, placement, axis), placement)
     base: Triple = tuple(np.round(parts[0].points[0], 3).tolist())
+    name = next((part.name for part in parts if part.name), "")
+    straight = _about(solid, axes, base, name)
+    slip = inclination_of(straight.outline.rings).slip
+    if not slip:
+        return straight
+    level = _about(solid, rolled(axes, slip), base, name)
+    return replace(level, remarks=told_of_slip(slip))
+
+
+def _about(solid: Solid, axes: tuple[Triple, Triple, Triple], base: Triple, name: str) -> Straight:
+    """The solid about the axes of a member."""
     found = trace(solid.moved(_into(axes, base)))
     if not found:
         raise UnreadableError("nothing is left of the body after its cuts")
@@ -69,7 +88,6 @@ def slice_solid(solid: Solid, placement: Matrix, axis: Cloud | None) -> Straight
     runs, recesses = without_recesses(_runs(whole))
     ended = _ended(runs)
     _require_straight(ended.runs)
-    name = next((part.name for part in parts if part.name), "")
     return _in_frame(ended, axes, base, name, (*blemishes, *recesses))
 
 

@@ -4,14 +4,15 @@ Rules. The span runs along the extrusion, or, where the profile is a convex elev
 parallel long sides (a rectangle, a parallelogram, a beam with mitred ends), along those sides
 if they are longer. Length is measured on the line through the outline's centroid, between the
 planes that end the body. A body whose oblique ends take up more than half of its length, or
-that is cut along its length, has no constant section and is not read.
+that is cut along its length, has no constant section and is not read. A section that is turned
+about the span by a slip of modelling is measured as if it were level.
 """
 
 from __future__ import annotations
 
 import math
-from collections.abc import Sequence
-from dataclasses import dataclass
+from collections.abc import Callable, Sequence
+from dataclasses import dataclass, replace
 
 import numpy as np
 
@@ -20,9 +21,10 @@ from ifccheck.ifc.bodies import Prism
 from ifccheck.ifc.clips import acts
 from ifccheck.ifc.entity import UnreadableError
 from ifccheck.ifc.placements import Matrix
-from ifccheck.ifc.profile_curves import Corner, Place, after, ring
+from ifccheck.ifc.profile_curves import Corner, Place, Points, after, ring
 from ifccheck.ifc.profile_shapes import Elevation, Profile, Turned
 from ifccheck.ifc.vectors import Triple, added, combined, cross, dot, rounded, scaled, size
+from ifccheck.mechanics.inclination import inclination_of
 
 VERTICAL = math.cos(math.radians(10.0))
 """A member within ten degrees of the vertical stands."""
@@ -38,6 +40,8 @@ SQUARE = 1e-12
 """Slant of an end below which it is square."""
 ALONG = 1e-6
 """Sine of the angle below which a plane runs along the span."""
+LEAST_TOLD = 0.01
+"""A slip of less than this is rounding [deg]."""
 VARIES = "section varies along the beam"
 
 Axes = tuple[Triple, Triple, Triple]
@@ -74,6 +78,8 @@ class _Member:
     base: Triple
     section: Turned
     planes: tuple[Plane, ...]
+    slip: float = 0.0
+    """By how little its section was turned before it was levelled [rad]"""
 
     def inner(self, vector: Sequence[float]) -> Triple:
         """Return a vector of the building in the member's axes."""
@@ -95,6 +101,7 @@ class StraightShape:
     outline: Outline
     oblique: tuple[float, float]
     steep: tuple[bool, bool]
+    remarks: tuple[str, ...] = ()
 
     def at(self, base: Sequence[float]) -> Straight:
         """Return the member whose base point stands at a place in the building."""
@@ -105,6 +112,7 @@ class StraightShape:
             box=Box(rounded(added(base, self.middle)), self.axes, self.half),
             oblique=self.oblique,
             steep=self.steep,
+            remarks=self.remarks,
         )
 
 
@@ -148,7 +156,35 @@ def _require_clear(length: float, side: float, depth: float) -> None:
 
 
 def _along_extrusion(prism: Prism, placement: Matrix) -> _Member:
-    axes = member_axes(prism.along, placement)
+    def about(axes: Axes) -> _Member:
+        return _extruded(prism, axes)
+
+    return _levelled(about, member_axes(prism.along, placement))
+
+
+def _levelled(about: Callable[[Axes], _Member], axes: Axes) -> _Member:
+    """A member about its axes, or, by a slip, about those that its section is level in."""
+    member = about(axes)
+    slip = inclination_of(member.section.outline.rings).slip
+    return replace(about(rolled(axes, slip)), slip=slip) if slip else member
+
+
+def rolled(axes: Axes, angle: float) -> Axes:
+    """Return axes turned about x, y towards z [rad]."""
+    x, y, z = axes
+    c, s = math.cos(angle), math.sin(angle)
+    return x, added(scaled(y, c), scaled(z, s)), added(scaled(z, c), scaled(y, -s))
+
+
+def told_of_slip(slip: float) -> tuple[str, ...]:
+    """Return what a reader must know of a section that was levelled."""
+    degrees = abs(math.degrees(slip))
+    if degrees < LEAST_TOLD:
+        return ()
+    return (f"drawn rolled by {degrees:.2f} degrees about its axis: taken as level",)
+
+
+def _extruded(prism: Prism, axes: Axes) -> _Member:
     _, left, up = axes
     x, y, normal = prism.axes
     section = prism.profile.turned(dot(left, x), dot(left, y), dot(up, x), dot(up, y))
@@ -165,7 +201,15 @@ def _along_elevation(prism: Prism, elevation: Elevation, placement: Matrix) -> _
     """The body swept along the two parallel sides of its profile, ended by the other sides."""
     corners = prism.placed(elevation.corners)
     sides = after(corners) - corners
-    axes = member_axes(sides[elevation.first].tolist(), placement)
+
+    def about(axes: Axes) -> _Member:
+        return _swept_across(prism, elevation, corners, axes)
+
+    return _levelled(about, member_axes(sides[elevation.first].tolist(), placement))
+
+
+def _swept_across(prism: Prism, elevation: Elevation, corners: Points, axes: Axes) -> _Member:
+    sides = after(corners) - corners
     frame = np.array(axes)
     base = corners[elevation.first]
     local = (corners - base) @ frame.T
@@ -244,6 +288,7 @@ def _shape(member: _Member, cuts: tuple[Plane, ...]) -> StraightShape:
         outline=section.outline,
         oblique=oblique,
         steep=_steep(planes, section.corners, starts, ends),
+        remarks=told_of_slip(member.slip),
     )
 
 

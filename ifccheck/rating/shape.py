@@ -2,9 +2,11 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Iterator, Sequence
 
 from ifccheck.beam import Reason, Run, Span
+from ifccheck.mechanics.inclination import Inclination, inclination_of
 from ifccheck.mechanics.outlines import bounds
 from ifccheck.rating.disturbed import disturbed, undisturbed_length
 from ifccheck.standards import Standard
@@ -52,6 +54,47 @@ def deep_member(
             f" {show_ratio(clear / depth)} times its depth, less than"
             f" {standard.least_slenderness:g} (clause {standard.slenderness_clause})"
         )
+
+
+def rolled_section(runs: Sequence[Run]) -> Iterator[Reason]:
+    """Why a beam whose section does not stand level is not rated.
+
+    A vertical load bends such a section about an axis that is inclined.
+    """
+    for each in _inclinations(runs):
+        if each.rolled:
+            yield Reason(
+                f"rolled by {_degrees(each.rolled)} about its axis: it does not bend about a level"
+                " axis"
+            )
+            return
+        if each.principal and not each.upright:
+            yield Reason(
+                f"the principal axes of its section are inclined by {_degrees(each.principal)}:"
+                " it does not bend about a level axis"
+            )
+            return
+
+
+def held_from_turning(runs: Sequence[Run]) -> str:
+    """Return what is assumed of a level section that is not symmetric; empty where it is."""
+    one_sided = [each for each in _inclinations(runs) if each.principal and each.upright]
+    if not one_sided:
+        return ""
+    angle = max(abs(each.principal) for each in one_sided)
+    return (
+        f"its section is not symmetric (principal axes inclined by {_degrees(angle)}): it is"
+        " assumed to be held from turning, by the slab, and to bend about its level axis"
+    )
+
+
+def _inclinations(runs: Sequence[Run]) -> list[Inclination]:
+    outlines = [outline for run in runs for outline in (run.outline, run.outline_end) if outline]
+    return [inclination_of(outline.rings) for outline in outlines]
+
+
+def _degrees(angle: float) -> str:
+    return f"{abs(math.degrees(angle)):.2g} degrees"
 
 
 def _greatest_depth(run: Run) -> float:
