@@ -11,6 +11,7 @@ from ifccheck.analysis.combinations import expand_exclusions, not_covered
 from ifccheck.beam import Case, Combination, Model, Remark, Verdict
 from ifccheck.brief.cases import cases_of, combination_remarks, combinations_of
 from ifccheck.brief.load import load_brief
+from ifccheck.brief.loads import upward_remarks
 from ifccheck.brief.merging import Matches
 from ifccheck.brief.model import Brief, ScheduleRow
 from ifccheck.brief.schedule import read_schedule
@@ -231,6 +232,7 @@ def rate_model(read: Read, matches: Matches, plan: Plan, found: Sequence[Found],
         *model.remarks,
         *schedule_remarks(plan.schedule, found),
         *combination_remarks(plan.brief),
+        *upward_remarks(plan.brief),
         *plan.remarks,
     )
     report = results.report_of(

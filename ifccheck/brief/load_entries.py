@@ -29,6 +29,7 @@ def load_entry(index: int, table: schema.LoadTable, cases: Sequence[Case]) -> Lo
     _check_case(path, table, cases)
     amount = _amount(path, table)
     _check_places(path, table, amount.kind)
+    _check_upward(path, table, amount)
     return LoadEntry(
         **beginning,
         case=table.case,
@@ -41,6 +42,7 @@ def load_entry(index: int, table: schema.LoadTable, cases: Sequence[Case]) -> Lo
         projected=table.projected,
         eccentricity=table.eccentricity.value if table.eccentricity else 0.0,
         text=_text(table, amount),
+        upward=table.upward,
     )
 
 
@@ -70,6 +72,18 @@ def _amount(path: Path, table: schema.LoadTable) -> _Amount:
     kind: LoadKind = "point" if table.point is not None else "moment"
     _check_not_zero((*path, kind), written)
     return _Amount(kind, (written.value, written.value), written.text)
+
+
+def _check_upward(path: Path, table: schema.LoadTable, amount: _Amount) -> None:
+    if not table.upward:
+        return
+    if amount.kind == "moment":
+        raise FaultError((*path, "upward"), "a moment acts neither up nor down: leave it out")
+    if min(amount.values) >= 0.0:
+        raise FaultError(
+            (*path, "upward"),
+            f"'{amount.text}' acts downward: write a load that acts upward with a minus sign",
+        )
 
 
 def _check_not_zero(path: Path, *written: Written) -> None:

@@ -6,7 +6,7 @@ import math
 from collections.abc import Mapping, Sequence
 from typing import NamedTuple
 
-from ifccheck.beam import Beam, Contact, Load, Span
+from ifccheck.beam import Beam, Contact, Load, Remark, Span
 from ifccheck.brief.merging import Matches
 from ifccheck.brief.model import Brief, LoadEntry, Position
 from ifccheck.brief.quantities import LEAST_LENGTH
@@ -15,6 +15,20 @@ from ifccheck.units import show
 
 TOLERANCE = 1.0
 """Distance [mm] by which a place may lie beyond the end of a beam."""
+
+
+def upward_remarks(brief: Brief) -> tuple[Remark, ...]:
+    """Tell of loads that act upward and do not say that they are meant to."""
+    return tuple(
+        Remark(
+            None,
+            "loads",
+            f"{entry.place} acts upward ({entry.text}): write upward = true there if it is meant",
+            "doubt",
+        )
+        for entry in brief.loads
+        if entry.acts_upward and not entry.upward
+    )
 
 
 class _Stretch(NamedTuple):

@@ -104,6 +104,13 @@ class LoadEntry:
     """Offset from the web's middle [mm]; other than 0 it asks for torsion."""
     text: str
     """ "60 kN at 2.1 m" """
+    upward: bool = False
+    """The engineer means a load that acts upward"""
+
+    @property
+    def acts_upward(self) -> bool:
+        """Whether any of it acts upward."""
+        return self.kind != "moment" and min(self.values) < 0.0
 
 
 @dataclass(frozen=True, slots=True)

@@ -207,6 +207,7 @@ class LoadTable(SelectingTable):
     at_from: Name | None = None
     face: Face | None = None
     projected: bool = False
+    upward: bool = False
     eccentricity: Length | None = None
 
 

@@ -129,6 +129,8 @@ CURES = {
     "weight of slab not included": "put it in a permanent case of the loads, or write"
     " loads_complete = true under [[beams]] where another member carries it",
     NO_LOAD: "reach them with an entry of [[loads]], or write unloaded = true under [[beams]]",
+    "load acts upward": "write upward = true in that entry of [[loads]] if it is meant, else take"
+    " its minus sign out",
     "supports unknown": "write an entry of [[supports]] that names them",
 }
 """What lets a beam be rated, for reasons that the brief can settle; by the words before ":"."""

@@ -57,4 +57,6 @@ class Sources:
     """By the brief [N/mm3]"""
     crane_cases: Set[str]
     permanent_cases: Set[str]
+    upward: Mapping[str, bool]
+    """Entries of loads that act upward, by place, and whether the engineer says so"""
     slabs: Slabs

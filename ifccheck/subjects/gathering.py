@@ -81,6 +81,7 @@ def gather(model: Model, brief: Brief, matches: Matches, standard: Standard) -> 
         slabs=Slabs(model.beams, model.slabs, model.members),
         unit_weight=Given(brief.basis.concrete_unit_weight, "brief, basis.concrete_unit_weight"),
         crane_cases={case.name for case in brief.cases if case.nature == "crane"},
+        upward={entry.place: entry.upward for entry in brief.loads if entry.acts_upward},
         permanent_cases={case.name for case in brief.cases if case.nature == "permanent"},
     )
     standing = {
@@ -120,7 +121,7 @@ def _one(
 ) -> Subject | Unrated:
     findings = Findings(beam.key, list(beam.reasons), list(beam.remarks))
     statement = sources.statements.get(beam.key, NO_STATEMENT)
-    stated = _stated(statement)
+    stated = (*_stated(statement), *_stated_upward(sources, loads))
     contacts = sources.contacts.get(beam.key, ())
     findings.remarks += [*sources.support_remarks.get(beam.key, ()), *statement.remarks]
     findings.remarks += [
@@ -245,6 +246,21 @@ def _stated(statement: BeamStatement) -> tuple[str, ...]:
     return tuple(found)
 
 
+def _stated_upward(sources: Sources, loads: Sequence[Load]) -> tuple[str, ...]:
+    meant = dict.fromkeys(load.origin for load in loads if sources.upward.get(load.origin))
+    return tuple(f"upward = true: {place} acts upward" for place in meant)
+
+
+def _judge_upward(sources: Sources, loads: Sequence[Load], findings: Findings) -> None:
+    """Note loads that lift the beam and may be a slip of the sign."""
+    for place in dict.fromkeys(load.origin for load in loads):
+        if not sources.upward.get(place, True):
+            findings.refuse(
+                f"load acts upward: {place}; write upward = true there if it is meant",
+                blocking=False,
+            )
+
+
 def _judge_loads(
     beam: Beam,
     sources: Sources,
@@ -256,6 +272,8 @@ def _judge_loads(
     """Note every doubt about what acts on the beam."""
     if not loads and not statement.unloaded:
         findings.refuse("no load assigned", blocking=False)
+    if sources.upward:
+        _judge_upward(sources, loads, findings)
     hung = sorted({load.origin for load in loads if load.face == "bottom"})
     if hung:
         places = ", ".join(hung)
