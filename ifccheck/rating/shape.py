@@ -4,9 +4,11 @@ from __future__ import annotations
 
 import math
 from collections.abc import Iterator, Sequence
+from functools import lru_cache
+from typing import NamedTuple
 
-from ifccheck.beam import Reason, Run, Span
-from ifccheck.mechanics.inclination import Inclination, inclination_of
+from ifccheck.beam import Beam, Outline, Reason, Run, Span
+from ifccheck.mechanics.inclination import inclination_of
 from ifccheck.mechanics.outlines import bounds
 from ifccheck.rating.disturbed import disturbed, undisturbed_length
 from ifccheck.standards import Standard
@@ -56,41 +58,57 @@ def deep_member(
         )
 
 
-def rolled_section(runs: Sequence[Run]) -> Iterator[Reason]:
-    """Why a beam whose section does not stand level is not rated.
+class Stance(NamedTuple):
+    """What is said of how a section stands."""
 
-    A vertical load bends such a section about an axis that is inclined.
+    reason: str = ""
+    """Why a vertical load does not bend it about a level axis; empty where it does"""
+    assumption: str = ""
+    """What is assumed of a level section that is not symmetric"""
+
+
+def stances(beams: Sequence[Beam]) -> dict[str, tuple[Stance, ...]]:
+    """How the sections of beams stand, by key, where there is something to say of it.
+
+    Each outline is looked at once, however many beams share it.
     """
-    for each in _inclinations(runs):
-        if each.rolled:
-            yield Reason(
-                f"rolled by {_degrees(each.rolled)} about its axis: it does not bend about a level"
-                " axis"
-            )
-            return
-        if each.principal and not each.upright:
-            yield Reason(
-                f"the principal axes of its section are inclined by {_degrees(each.principal)}:"
-                " it does not bend about a level axis"
-            )
-            return
+    known: dict[int, Stance] = {}  # by identity, which the beams keep: hashing each takes long
+    found: dict[str, tuple[Stance, ...]] = {}
+    for beam in beams:
+        for run in beam.runs:
+            for outline in (run.outline, run.outline_end):
+                if outline is None:
+                    continue
+                stance = known.get(id(outline))
+                if stance is None:
+                    stance = known[id(outline)] = _stance(outline)
+                if stance is not _LEVEL and stance not in found.get(beam.key, ()):
+                    found[beam.key] = (*found.get(beam.key, ()), stance)
+    return found
 
 
-def held_from_turning(runs: Sequence[Run]) -> str:
-    """Return what is assumed of a level section that is not symmetric; empty where it is."""
-    one_sided = [each for each in _inclinations(runs) if each.principal and each.upright]
-    if not one_sided:
-        return ""
-    angle = max(abs(each.principal) for each in one_sided)
-    return (
-        f"its section is not symmetric (principal axes inclined by {_degrees(angle)}): it is"
-        " assumed to be held from turning, by the slab, and to bend about its level axis"
+_LEVEL = Stance()
+
+
+@lru_cache(maxsize=4096)
+def _stance(outline: Outline) -> Stance:
+    stands = inclination_of(outline.rings)
+    if stands.rolled:
+        return Stance(
+            f"rolled by {_degrees(stands.rolled)} about its axis: it does not bend about a level"
+            " axis"
+        )
+    if not stands.principal:
+        return _LEVEL
+    inclined = f"principal axes inclined by {_degrees(stands.principal)}"
+    if not stands.upright:
+        return Stance(
+            f"section does not stand level, {inclined}: it does not bend about a level axis"
+        )
+    return Stance(
+        assumption=f"its section is not symmetric ({inclined}): it is assumed to be held from"
+        " turning, as by a slab, and to bend about its level axis"
     )
-
-
-def _inclinations(runs: Sequence[Run]) -> list[Inclination]:
-    outlines = [outline for run in runs for outline in (run.outline, run.outline_end) if outline]
-    return [inclination_of(outline.rings) for outline in outlines]
 
 
 def _degrees(angle: float) -> str:

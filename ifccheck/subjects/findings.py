@@ -10,6 +10,7 @@ from ifccheck.brief.model import Brief
 from ifccheck.brief.statements import BeamStatement, MaterialStatement
 from ifccheck.frame.flanges import Slabs
 from ifccheck.frame.openings import Net
+from ifccheck.rating.shape import Stance
 from ifccheck.standards import Standard
 
 NO_MATERIAL = MaterialStatement()
@@ -31,6 +32,15 @@ class Findings:
         """Note what openings bring."""
         self.reasons += net.reasons
         self.remarks += net.remarks
+
+    def hear(self, stances: Sequence[Stance]) -> None:
+        """Note how the sections stand."""
+        self.reasons += [Reason(each.reason) for each in stances if each.reason]
+        self.remarks += [
+            Remark(self.key, "geometry", each.assumption, "assumption")
+            for each in stances
+            if each.assumption
+        ]
 
     def assume(self, label: str, given: Given) -> Given:
         """Note an assumed value."""
@@ -57,6 +67,8 @@ class Sources:
     """By the brief [N/mm3]"""
     crane_cases: Set[str]
     permanent_cases: Set[str]
+    stances: Mapping[str, Sequence[Stance]]
+    """Of sections of which there is something to say"""
     upward: Mapping[str, bool]
     """Entries of loads that act upward, by place, and whether the engineer says so"""
     slabs: Slabs

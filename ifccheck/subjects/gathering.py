@@ -32,7 +32,7 @@ from ifccheck.frame.openings import Net, net_of
 from ifccheck.frame.reactions import loaded_from_side, resting_between, unknown_reactions
 from ifccheck.frame.slab_flanges import Asked, Counted, counted
 from ifccheck.frame.spans import Standing, stand_alone
-from ifccheck.rating.shape import deep_member, held_from_turning, rolled_section, shape_reasons
+from ifccheck.rating.shape import deep_member, shape_reasons, stances
 from ifccheck.rating.stiffness import varies
 from ifccheck.rating.subject import Subject, Unrated
 from ifccheck.standards import Standard
@@ -81,6 +81,7 @@ def gather(model: Model, brief: Brief, matches: Matches, standard: Standard) -> 
         slabs=Slabs(model.beams, model.slabs, model.members),
         unit_weight=Given(brief.basis.concrete_unit_weight, "brief, basis.concrete_unit_weight"),
         crane_cases={case.name for case in brief.cases if case.nature == "crane"},
+        stances=stances(model.beams),
         upward={entry.place: entry.upward for entry in brief.loads if entry.acts_upward},
         permanent_cases={case.name for case in brief.cases if case.nature == "permanent"},
     )
@@ -128,9 +129,7 @@ def _one(
         Remark(beam.key, "brief", f"the engineer states: {text}", "assumption") for text in stated
     ]
     concrete = concrete_of(beam, sources, findings)
-    findings.reasons += rolled_section(beam.runs)
-    if assumed := held_from_turning(beam.runs):
-        findings.remarks.append(Remark(beam.key, "geometry", assumed, "assumption"))
+    findings.hear(sources.stances.get(beam.key, ()))
     _judge_standing(beam, sources, statement, standing, findings)
     steel = steel_of(beam, sources, findings) if beam.runs else None
     _judge_loads(beam, sources, statement, standing, loads, findings)
