@@ -22,7 +22,6 @@ from tests.made_subjects import (
     combinations,
     line,
     point,
-    rated,
     scaled,
     subject,
 )
@@ -132,13 +131,15 @@ def test_no_factor_lies_above_one_at_which_a_check_finds_the_beam_short(
 
 
 def test_a_beam_that_a_greater_load_relieves_is_limited_by_the_lesser_one() -> None:
-    """The whole program's utilisations: short above the factor, and sound again far above it."""
+    """At the stations that it has: short above the factor, and sound again far above it."""
     (factor,), _ = factors_of([HUMP], "general")
     shares = (1.0 - 1e-4, 1.02, 1.12)
     beams = [_named(scaled(HUMP, "press", factor * share), f"beam {share}") for share in shares]
-    _, ratings = rated(*beams)
-    greatest = [max(each.utilisation for each in rating.limit_states) for rating in ratings]
-    assert [value > 1.0 for value in greatest] == [False, True, False]
+    batch = rate_frame(
+        frame_of(beams, CASES), beams, STANDARD, Options("general"), CASES, combinations(CASES)
+    )
+    greatest = np.max([each.worst.utilisation for each in batch.states], axis=0)
+    assert (greatest > 1.0).tolist() == [False, True, False]
 
 
 @pytest.mark.parametrize("methods", [METHODS, METHODS[::-1]])

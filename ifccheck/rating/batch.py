@@ -14,11 +14,12 @@ from ifccheck.analysis.effects import (
     LEAST_MOMENT,
     LEAST_SHEAR,
 )
-from ifccheck.analysis.stations import StationTable
+from ifccheck.analysis.stations import NOWHERE, Places, StationTable, join_places
 from ifccheck.beam import Case, Combination
 from ifccheck.mechanics.arrays import Bools, Demand, Floats, Ints
 from ifccheck.rating import verdict
 from ifccheck.rating.assembly import Frame, frame_of
+from ifccheck.rating.between import exceeded_between, limited_between
 from ifccheck.rating.factors import Factors, least_of, rating_factors
 from ifccheck.rating.loaded import Loaded, loaded
 from ifccheck.rating.subject import Subject
@@ -27,6 +28,9 @@ from ifccheck.rating.uplift import Uplift, uplift_of
 from ifccheck.rating.utilisation import Found, Peaks, by_state, evaluate, worst_of
 from ifccheck.rating.verdict import Evaluated
 from ifccheck.standards import Note, Options, Standard
+
+MOST_ROUNDS = 4
+"""How often stations are added between others"""
 
 BATCH = 700
 """Most beams that are rated together"""
@@ -65,6 +69,8 @@ class Batch:
     uplift: Uplift
     notes: tuple[Note, ...]
     basis: dict[str, Floats]
+    between: Places
+    """Places between stations at which beams may be used more, or limit a case further"""
 
 
 def batches(
@@ -74,10 +80,16 @@ def batches(
     cases: Sequence[Case],
     combinations: Sequence[Combination],
 ) -> Iterator[Batch]:
-    """Rate the subjects, a batch at a time."""
+    """Rate the subjects, a batch at a time. Beams that need more stations than others are rated
+    again: they appear in a later batch once more, which holds."""
     keep_memory()
-    for batch in batches_of(subjects):
-        yield rate_batch(batch, standard, options, cases, combinations)
+    for some in batches_of(subjects):
+        batch = rate_frame(frame_of(some, cases), some, standard, options, cases, combinations)
+        yield batch
+        beams, more = _doubtful(batch)
+        if beams.size:
+            again = [some[beam] for beam in beams.tolist()]
+            yield rate_batch(again, standard, options, cases, combinations, more)
 
 
 def batches_of(subjects: Sequence[Subject]) -> Iterator[Sequence[Subject]]:
@@ -104,8 +116,9 @@ def rate_batch(
     options: Options,
     cases: Sequence[Case],
     combinations: Sequence[Combination],
+    more: Places = NOWHERE,
 ) -> Batch:
-    """Rate beams together.
+    """Rate beams together, with as many stations as it takes.
 
     Parameters
     ----------
@@ -115,8 +128,22 @@ def rate_batch(
         All load cases, ``self`` among them.
     combinations
         Strength combinations, exclusions already worked out.
+    more
+        Places at which stations are wanted from the first.
     """
-    return rate_frame(frame_of(subjects, cases), subjects, standard, options, cases, combinations)
+    frame = frame_of(subjects, cases)
+    for _ in range(MOST_ROUNDS):
+        batch = rate_frame(frame, subjects, standard, options, cases, combinations, more)
+        if not batch.between.beam.size:
+            break
+        more = join_places(more, batch.between)
+    return batch
+
+
+def _doubtful(batch: Batch) -> tuple[Ints, Places]:
+    """Beams that need more stations, and where, by their rows among themselves."""
+    beams, row = np.unique(batch.between.beam, return_inverse=True)
+    return beams, replace(batch.between, beam=row)
 
 
 def rate_frame(
@@ -126,9 +153,10 @@ def rate_frame(
     options: Options,
     cases: Sequence[Case],
     combinations: Sequence[Combination],
+    more: Places = NOWHERE,
 ) -> Batch:
     """Rate beams of which the tables are made already: numbers alone."""
-    (batch,) = rate_options(frame, subjects, standard, (options,), cases, combinations)
+    (batch,) = rate_options(frame, subjects, standard, (options,), cases, combinations, more)
     return batch
 
 
@@ -139,10 +167,11 @@ def rate_options(
     options: Sequence[Options],
     cases: Sequence[Case],
     combinations: Sequence[Combination],
+    more: Places = NOWHERE,
 ) -> Iterator[Batch]:
     """Rate the same beams by several options of a standard, one after the other; what those do
     not touch is worked out once."""
-    under = loaded(frame, standard, cases, combinations)
+    under = loaded(frame, standard, cases, combinations, more)
     prepared = standard.prepare(under.members, under.arrays, options[0])
     steady = _found(standard, prepared, under, steady=True)
     states = _states(standard, prepared, steady, under)
@@ -160,7 +189,8 @@ def rate_options(
         prepared = standard.with_options(prepared, each)
         found = _found(standard, prepared, under, steady=False)
         known = states | _states(standard, prepared, found, under)
-        lowered = _factors(standard, found, under, factors)
+        reached: dict[int, list[Floats]] = {row: [] for row in factors}
+        lowered = _factors(standard, found, under, factors, reached)
         yield Batch(
             subjects=tuple(subjects),
             stations=under.stations,
@@ -174,6 +204,10 @@ def rate_options(
             uplift=uplift_of(under.effects, frame.spans, {cases[row].name: row for row in lowered}),
             notes=standard.notes(prepared),
             basis=standard.basis(prepared),
+            between=join_places(
+                exceeded_between([*steady, *found], [each.worst for each in known.values()], under),
+                limited_between(lowered, reached, [*steady, *found], under),
+            ),
         )
 
 
@@ -220,14 +254,17 @@ def _factors(
     found: Sequence[Found],
     under: Loaded,
     known: dict[int, Factors] | None = None,
+    reached: dict[int, list[Floats]] | None = None,
 ) -> dict[int, Factors]:
-    """Rating factors of each rated case by its row, none above those that are known."""
+    """Rating factors of each rated case by its row, none above those that are known; what is
+    reached under them is noted in place."""
     factors = {}
     for row, share in zip(under.acting.scaled, under.elements.shares, strict=True):
         above = known[row] if known else None
         ceiling = above.factor if above else None
+        seen = reached[row] if reached else None
         least = rating_factors(
-            standard.limit_states, found, under.elements, share, under.stations.x, ceiling
+            standard.limit_states, found, under.elements, share, under.stations.x, ceiling, seen
         )
         factors[row] = least_of(above, least) if above else least
     return factors

@@ -81,15 +81,6 @@ class _Growing:
     element: Ints
     """What each element stands for in the batch"""
 
-    def exceeding(self, factor: Floats) -> Bools:
-        """Whether each limit state exceeds 1 or cannot be worked out (S, E), each element at its
-        own factor (E)."""
-        exceeds = np.empty((len(self.quick.states), self.beam.size), dtype=np.bool_)
-        for rows in stretches(self.beam.size):
-            for state, (utilisation, _) in enumerate(self._evaluated(factor, rows)):
-                np.less_equal(utilisation, 1.0, out=exceeds[state, rows])
-        return np.logical_not(exceeds, out=exceeds)
-
     def utilisation(self, factor: Floats) -> Floats:
         """Utilisation (S, E), each element at its own factor (E); inf where it cannot be worked
         out."""
@@ -136,7 +127,9 @@ def known(utilisation: Floats) -> Floats:
     return utilisation
 
 
-def least_crossing(found: Found, elements: Elements, share: Floats, ceiling: Floats) -> Least:
+def least_crossing(
+    found: Found, elements: Elements, share: Floats, ceiling: Floats
+) -> tuple[Least, Floats]:
     """Least factor below ``ceiling`` at which a limit state exceeds 1, per beam; inf if none.
 
     Parameters
@@ -149,12 +142,20 @@ def least_crossing(found: Found, elements: Elements, share: Floats, ceiling: Flo
         The part of it that the case makes (NUMBERS, E).
     ceiling
         Factors above which no one asks (B); 0 where no one asks at all.
+
+    Returns
+    -------
+    tuple
+        The factors, and the utilisation of each limit state and element just below that of its
+        beam, or below the ceiling (S, E); 0 where that is 0.
     """
     e = elements
     growing = _Growing(
         found.quick, found.basis, e.station, e.total, share, e.can_sag, e.can_hog, e.beam, e.element
     )
-    search = _Search(growing, ceiling, no_factor(ceiling.size))
+    search = _Search(
+        growing, ceiling, no_factor(ceiling.size), np.zeros((len(found.peaks), e.beam.size))
+    )
     now = known(np.array([peaks.each for peaks in found.peaks]))
     worst = now.max(axis=0)
     driven = np.any(share[_DRIVEN] != 0.0, axis=0)
@@ -165,7 +166,7 @@ def least_crossing(found: Found, elements: Elements, share: Floats, ceiling: Flo
     least.factor[least.element >= 0] = 0.0
     _solve_likely(search, some, alone.max(axis=0), now.take(rows, axis=1, mode="clip"))
     _solve_the_rest(search, worst)
-    return least
+    return least, search.reached
 
 
 @dataclass(frozen=True, slots=True)
@@ -176,6 +177,8 @@ class _Search:
     ceiling: Floats
     """(B)"""
     least: Least
+    reached: Floats
+    """Utilisation just below the reach, where it was looked at last (S, E)"""
 
     @property
     def reach(self) -> Floats:
@@ -239,7 +242,7 @@ def _solve_the_rest(search: _Search, now: Floats) -> None:
     growing, least, beams = search.growing, search.least, search.ceiling.size
     pending = search.reach > 0.0
     while pending.any():
-        rows, factor = _exceeding(growing, search.reach, pending)
+        rows, factor = _exceeding(search, pending)
         if not rows.size:
             return
         bound = -greatest_of_beams(-factor, growing.beam[rows], beams)
@@ -256,14 +259,17 @@ def _solve_the_rest(search: _Search, now: Floats) -> None:
         _close_in(few, replace(bracket, trial=_chord(bracket)), least)
 
 
-def _exceeding(growing: _Growing, reach: Floats, pending: Bools) -> tuple[Ints, Floats]:
-    """Elements of the pending beams that exceed up to their reach (B), and the least factor at
-    which each was seen to."""
+def _exceeding(search: _Search, pending: Bools) -> tuple[Ints, Floats]:
+    """Elements of the pending beams that exceed up to their reach, and the least factor at which
+    each was seen to."""
+    growing, reach = search.growing, search.reach
     rows = np.flatnonzero(pending[growing.beam])
     if rows.size < growing.beam.size:
         growing = growing.take(rows)
     beside = np.where(pending, reach * (1.0 - _BESIDE), 0.0)[growing.beam]
-    least = np.where(growing.exceeding(beside).any(axis=0), beside, np.inf)
+    utilisation = growing.utilisation(beside)
+    search.reached[:, rows] = utilisation
+    least = np.where(utilisation.max(axis=0) > 1.0, beside, np.inf)
     reversible = growing.can_sag & growing.can_hog
     relieved = np.flatnonzero(_relieved(growing) | reversible)
     if relieved.size:
@@ -300,7 +306,7 @@ def _look_within(few: _Growing, most: Floats, least: Floats, rows: Ints) -> None
 def _note(few: _Growing, factor: Floats, least: Floats, rows: Ints) -> None:
     """Lower ``least`` at ``rows`` to the factors at which the few exceed."""
     if rows.size:
-        seen = few.exceeding(factor).any(axis=0)
+        seen = (few.utilisation(factor) > 1.0).any(axis=0)
         least[rows[seen]] = np.minimum(least[rows[seen]], factor[seen])
 
 

@@ -53,6 +53,7 @@ def rating_factors(
     share: Floats,
     x: Floats,
     ceiling: Floats | None = None,
+    reached: list[Floats] | None = None,
 ) -> Factors:
     """Solve the rating factor of one case on all beams at once.
 
@@ -70,6 +71,9 @@ def rating_factors(
         Stations [mm] (N).
     ceiling
         Factors above which no one asks (B).
+    reached
+        Filled with the utilisation at each station just below the factor (N), of every limit
+        state whose resistance depends on the loads.
 
     Returns
     -------
@@ -78,13 +82,13 @@ def rating_factors(
     """
     beams = elements.first_of_beam.size
     moved = np.any(np.abs(share[:2]) > _LEAST_SHARE, axis=0)
-    reached = np.logical_or.reduceat(moved, elements.first_of_beam)
-    most = np.where(reached, GREATEST_FACTOR, 0.0)
+    touched = np.logical_or.reduceat(moved, elements.first_of_beam)
+    most = np.where(touched, GREATEST_FACTOR, 0.0)
     if ceiling is not None:
         most = np.minimum(most, ceiling)
     least = no_factor(beams)
     for one in sorted(found, key=lambda one: one.quick.demanded is None):
-        lower = _solve(one, elements, share, np.minimum(least.factor, most))
+        lower = _solve(one, elements, share, np.minimum(least.factor, most), reached)
         rows = np.array([states.index(state) for state in one.quick.states])
         better = np.flatnonzero(lower.factor < least.factor)
         least.factor[better], least.element[better] = lower.factor[better], lower.element[better]
@@ -104,7 +108,9 @@ def least_of(first: Factors, second: Factors) -> Factors:
     )
 
 
-def _solve(found: Found, elements: Elements, share: Floats, ceiling: Floats) -> Least:
+def _solve(
+    found: Found, elements: Elements, share: Floats, ceiling: Floats, reached: list[Floats] | None
+) -> Least:
     """Least factor below ``ceiling`` at which a limit state exceeds 1, per beam; inf if none.
 
     Where the ceiling is 0 no one asks.
@@ -113,7 +119,10 @@ def _solve(found: Found, elements: Elements, share: Floats, ceiling: Floats) -> 
         return _unmoved(found, elements, ceiling)
     if found.quick.demanded is not None:
         return _straight(found, found.quick.demanded, elements, share, ceiling)
-    return least_crossing(found, elements, share, ceiling)
+    least, seen = least_crossing(found, elements, share, ceiling)
+    if reached is not None:
+        reached.extend(np.maximum.reduceat(seen, elements.first_of_station, axis=1))
+    return least
 
 
 def _unmoved(found: Found, elements: Elements, ceiling: Floats) -> Least:

@@ -13,6 +13,7 @@ from ifccheck.analysis.loads import LINE
 from ifccheck.analysis.spans import FREE
 from ifccheck.analysis.statics import Solved, effects_at, join_effects, solve
 from ifccheck.analysis.stations import (
+    NOWHERE,
     Places,
     StationTable,
     critical_rows,
@@ -53,6 +54,7 @@ def loaded(
     standard: Standard,
     cases: Sequence[Case],
     combinations: Sequence[Combination],
+    more: Places = NOWHERE,
 ) -> Loaded:
     """Find the stations of the beams and what acts there.
 
@@ -66,11 +68,13 @@ def loaded(
         All load cases, ``self`` among them.
     combinations
         Strength combinations, exclusions already worked out.
+    more
+        Places at which stations are wanted besides.
     """
     factors = factor_array(combinations, cases)
     critical = _critical_sections(frame, standard)
     solved = solved_frame(frame, len(cases))
-    effects, stations = _effects(frame, solved, critical, factors)
+    effects, stations = _effects(frame, solved, critical, factors, more)
     acting = demands(
         effects,
         critical_rows(stations, critical[:, 0], critical[:, 1]),
@@ -148,10 +152,10 @@ def _opened(frame: Frame, critical: Floats) -> Bools:
 
 
 def _effects(
-    frame: Frame, solved: Solved, critical: Floats, factors: Floats
+    frame: Frame, solved: Solved, critical: Floats, factors: Floats, more: Places
 ) -> tuple[Effects, StationTable]:
     """Effects at stations that include every place where a greatest moment turns."""
-    fixed = join_places(*_fixed_places(frame, critical))
+    fixed = join_places(*_fixed_places(frame, critical), more)
     stations = within(make_stations(frame.spans, frame.loads, fixed), frame.checked)
     found = effects_at(solved, stations, deflections=False)
     beam, x = turning_places(found, factors).places()

@@ -109,6 +109,9 @@ class Quick:
     turns: Callable[[Any, Demand, Demand], Sequence[Floats]] | None = None
     """Multiples of a case at which another rule begins to hold and utilisation may drop, given
     that basis, what acts and the part that the case has in it; nan or inf where there is none"""
+    most: Callable[[Any, Demand], Sequence[Floats]] | None = None
+    """Utilisations that none exceeds whatever moment and shear act, given that basis and the
+    greatest moments of the beam; inf where nothing bounds them"""
 
     @property
     def steady(self) -> bool:

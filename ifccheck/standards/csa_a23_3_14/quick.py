@@ -43,6 +43,20 @@ def _turns(faces: Faces[Web], total: Demand, share: Demand) -> tuple[Floats, ...
         )
 
 
-QUICK_WEB = Quick((shear_check.SHEAR, longitudinal.LONGITUDINAL), webs, _evaluate, turns=_turns)
+def _most(faces: Faces[Web], demand: Demand) -> tuple[Floats, Floats]:
+    """Nothing bounds shear; the tension of each face need not exceed what the greatest moment
+    that tensions it needs alone (11.3.9.2 to 11.3.9.4)."""
+    sides = (
+        (demand.peak_sagging, faces.soffit.lever_arm * faces.soffit.steel),
+        (demand.peak_hogging, faces.top.lever_arm * faces.top.steel),
+    )
+    with np.errstate(divide="ignore", invalid="ignore"):
+        soffit, top = (np.where(peak > 0.0, peak / resisted, 0.0) for peak, resisted in sides)
+    return np.full(soffit.shape, np.inf), np.maximum(soffit, top)
+
+
+QUICK_WEB = Quick(
+    (shear_check.SHEAR, longitudinal.LONGITUDINAL), webs, _evaluate, turns=_turns, most=_most
+)
 
 QUICK = (QUICK_FLEXURE, QUICK_WEB, QUICK_MINIMUM_STIRRUPS)
