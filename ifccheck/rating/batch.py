@@ -29,7 +29,7 @@ from ifccheck.rating.utilisation import Found, Peaks, by_state, evaluate, worst_
 from ifccheck.rating.verdict import Evaluated
 from ifccheck.standards import Note, Options, Standard
 
-MOST_ROUNDS = 4
+MOST_ROUNDS = 6
 """How often stations are added between others"""
 
 BATCH = 700
