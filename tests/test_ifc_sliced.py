@@ -11,7 +11,7 @@ import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
 
-from ifccheck.beam import Beam, Outline
+from ifccheck.beam import Beam, Opening, Outline
 from tests.bodies_of_beams import (
     EYE,
     KINDS,
@@ -248,8 +248,21 @@ def cylinder(bodies: Bodies, place: tuple[float, float, float], radius: float) -
     return bodies.make("IfcRightCircularCylinder", axes, *lengths)
 
 
-@pytest.mark.parametrize("what", ["round", "square", "upright"])
-def test_a_hole_in_the_body_is_told_and_its_section_goes_on(what: str) -> None:
+HOLES = {
+    "round": (-150.0, 150.0, 190.0, 310.0),
+    "square": (-150.0, 150.0, 190.0, 310.0),
+    "upright": (-60.0, 60.0, 0.0, 500.0),
+}
+
+
+def box_round(opening: Opening) -> tuple[float, ...]:
+    return (
+        opening.start, opening.end, opening.right, opening.left, opening.bottom, opening.top,
+    )  # fmt: skip
+
+
+@pytest.mark.parametrize("what", list(HOLES))
+def test_a_hole_in_the_body_is_an_opening_and_the_section_goes_on(what: str) -> None:
     building = Building()
     bodies = Bodies(building.file)
     cut = {
@@ -258,20 +271,56 @@ def test_a_hole_in_the_body_is_told_and_its_section_goes_on(what: str) -> None:
         "upright": lambda: bodies.block((1940, -60, -50), (2060, 60, 900)),
     }[what]()
     _, beam = drawn(building, [bodies.less(bodies.extrusion(box_of(300, 0, 500), 0, 6000), cut)])
-    assert [reason.blocking for reason in beam.reasons] == [False]
-    assert reasons(beam) == "hole in the body at x = 1.94 to 2.06 m: not read"
+    assert reasons(beam) == ""
     assert np.array(widths(beam)) == pytest.approx(np.array([(0, 6000, 500, 500, 300)]), abs=0.01)
+    (found,) = beam.openings
+    drawn_box = (1940.0, 2060.0, *HOLES[what])
+    assert box_round(found) == pytest.approx(drawn_box, abs=0.5)
+    for low, value in zip(drawn_box[::2], box_round(found)[::2], strict=True):
+        assert value <= low + 1e-6  # never smaller than the hole
+    for high, value in zip(drawn_box[1::2], box_round(found)[1::2], strict=True):
+        assert value >= high - 1e-6
+    assert found.origin == "hole in the body"
 
 
-def test_a_round_recess_in_the_side_is_told() -> None:
+def test_a_round_recess_in_the_side_is_an_opening() -> None:
     building = Building()
     bodies = Bodies(building.file)
     solid = bodies.less(
         bodies.extrusion(box_of(300, 0, 500), 0, 6000), cylinder(bodies, (2000, 100, 250), 60.0)
     )
     _, beam = drawn(building, [solid])
-    assert reasons(beam) == "recess in the body at x = 1.94 to 2.06 m: not read"
+    assert reasons(beam) == ""
     assert len(beam.runs) == 1
+    (found,) = beam.openings
+    assert box_round(found) == pytest.approx((1940, 2060, 100, 150, 190, 310), abs=0.5)
+
+
+def test_two_holes_are_two_openings_and_one_that_the_model_names_is_not_told_twice() -> None:
+    building = Building()
+    bodies = Bodies(building.file)
+    first = bodies.block((1940, -400, 190), (2060, 400, 310))
+    second = bodies.block((3940, -400, 190), (4060, 400, 310))
+    solid = bodies.less(bodies.less(bodies.extrusion(box_of(300, 0, 500), 0, 6000), first), second)
+    product, beam = drawn(building, [solid])
+    assert [round(one.start, -1) for one in beam.openings] == [1940, 3940]
+    building.void(product, bodies.block((3935, -400, 185), (4065, 400, 315)))
+    (again,) = building.read().beams
+    assert len(again.openings) == 2
+    assert ["IfcOpeningElement" in one.origin for one in again.openings] == [True, False]
+
+
+def test_a_hole_in_a_tapered_body_lies_where_it_lies() -> None:
+    building = Building()
+    bodies = Bodies(building.file)
+    side = [(0, 0), (6000, 300), (6000, 600), (0, 600)]
+    solid = bodies.less(
+        bodies.elevation(side, 300.0), bodies.block((1940, -400, 390), (2060, 400, 450))
+    )
+    _, beam = drawn(building, [solid])
+    (found,) = beam.openings
+    assert box_round(found)[:2] == pytest.approx((1940, 2060), abs=0.5)
+    assert box_round(found)[4:] == pytest.approx((390, 450), abs=0.5)
 
 
 def test_a_square_recess_in_the_top_is_two_steps() -> None:

@@ -11,6 +11,7 @@ from ifccheck.beam import Beam, Box, Opening, OutOfScope, Reason, Remark, Run
 from ifccheck.ifc.concretes import Concretes
 from ifccheck.ifc.context import Context
 from ifccheck.ifc.entity import ILL_TYPED, UnreadableError, text
+from ifccheck.ifc.hollows import not_among
 from ifccheck.ifc.materials import MaterialDefinition, Materials
 from ifccheck.ifc.plain_bodies import PlainBodies
 from ifccheck.ifc.precast import told_precast
@@ -264,7 +265,7 @@ class BeamReader:
             doubts.reason(f"opening cannot be read: {why}")
         for origin in found.missed:
             doubts.remark(GEOMETRY, f"opening {origin} does not meet the beam: nothing taken off")
-        return tuple(found.openings)
+        return (*found.openings, *not_among(straight.openings, found.openings))
 
 
 def _told_by_properties(sets: Sets) -> tuple[tuple[str, str], ...]:

@@ -1,4 +1,4 @@
-"""Holes and recesses in a body that is whole on both sides of them: found, told, not read."""
+"""Holes and recesses in a body that is whole on both sides of them."""
 
 from __future__ import annotations
 

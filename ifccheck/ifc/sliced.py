@@ -19,6 +19,7 @@ from ifccheck.ifc.blemishes import bridged, without_recesses
 from ifccheck.ifc.clips import Cloud
 from ifccheck.ifc.entity import UnreadableError
 from ifccheck.ifc.figures import Figure, alike, matched, polygon_of
+from ifccheck.ifc.hollows import Hollows, hollows
 from ifccheck.ifc.placements import Matrix
 from ifccheck.ifc.solid_axis import span_direction
 from ifccheck.ifc.solids import Solid
@@ -44,6 +45,7 @@ CORE = 0.5
 """Part of the least depth and width that one straight line of sight along the member needs."""
 TWIST = math.radians(3.0)
 """All long sides of a section turned by more than this one way are a twist."""
+BEYOND = "a hole in its body lies beyond the middle of its oblique end"
 LONG_SIDE = 0.1
 """Sides longer than this part of the outline's length tell of a twist."""
 
@@ -76,19 +78,21 @@ def slice_solid(solid: Solid, placement: Matrix, axis: Cloud | None) -> Straight
     if not slip:
         return straight
     level = _about(solid, rolled(axes, slip), base, name)
-    return replace(level, remarks=told_of_slip(slip))
+    return replace(level, remarks=(*level.remarks, *told_of_slip(slip)))
 
 
 def _about(solid: Solid, axes: tuple[Triple, Triple, Triple], base: Triple, name: str) -> Straight:
     """The solid about the axes of a member."""
-    found = trace(solid.moved(_into(axes, base)))
+    lying = solid.moved(_into(axes, base))
+    found = trace(lying)
     if not found:
         raise UnreadableError("nothing is left of the body after its cuts")
     whole, blemishes = bridged(found)
     runs, recesses = without_recesses(_runs(whole))
     ended = _ended(runs)
     _require_straight(ended.runs)
-    return _in_frame(ended, axes, base, name, (*blemishes, *recesses))
+    blemishes += recesses
+    return _in_frame(ended, axes, base, name, hollows(lying, runs, found, blemishes))
 
 
 def _into(axes: tuple[Triple, Triple, Triple], base: Triple) -> Matrix:
@@ -262,7 +266,7 @@ def _in_frame(
     axes: tuple[Triple, Triple, Triple],
     base: Triple,
     name: str,
-    reasons: tuple[tuple[str, float, float], ...],
+    hollow: Hollows,
 ) -> Straight:
     runs = ended.runs
     points = np.concatenate([figure[0] for run in runs for figure in (run.first, run.last)])
@@ -276,6 +280,7 @@ def _in_frame(
     centre = (sum(ended.reach) / 2.0, *((low + high) / 2.0))
     half = ((ended.reach[1] - ended.reach[0]) / 2.0, *((high - low) / 2.0))
     x, y, z = (rounded(axis) for axis in axes)
+    found = [one.in_beam(start, middle, soffit, length) for one in hollow.read]
     return Straight(
         axis=Axis(origin, x, y, z, round(length, 6)),
         outline=_outline(runs[0].first, shift, name),
@@ -284,11 +289,15 @@ def _in_frame(
         steep=ended.steep,
         runs=tuple(_run(run, start, length, shift, named) for run in runs),
         reasons=tuple(
-            Reason(f"{what} at x = {(a - start) / 1e3:.2f} to {(b - start) / 1e3:.2f} m: not read",
-                   blocking=False)
-            for what, a, b in reasons
+            Reason(
+                f"{what} at x = {(a - start) / 1e3:.2f} to {(b - start) / 1e3:.2f} m: not read",
+                blocking=False,
+            )
+            for what, a, b in hollow.unread
         ),
-    )  # fmt: skip
+        openings=tuple(each for each in found if each is not None),
+        remarks=(BEYOND,) if None in found else (),
+    )
 
 
 def _run(run: Piece, start: float, length: float, shift: Cloud, name: str) -> Run:

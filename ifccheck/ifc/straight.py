@@ -16,7 +16,7 @@ from dataclasses import dataclass, replace
 
 import numpy as np
 
-from ifccheck.beam import Axis, Box, Outline, Reason, Run
+from ifccheck.beam import Axis, Box, Opening, Outline, Reason, Run
 from ifccheck.ifc.bodies import Prism
 from ifccheck.ifc.clips import acts
 from ifccheck.ifc.entity import UnreadableError
@@ -66,6 +66,8 @@ class Straight:
     """Its sections where they are not the outline from end to end"""
     reasons: tuple[Reason, ...] = ()
     """What keeps it from being adequate"""
+    openings: tuple[Opening, ...] = ()
+    """Holes and recesses that its body shows"""
     remarks: tuple[str, ...] = ()
     """What is doubtful of how it is drawn"""
 
