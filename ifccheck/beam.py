@@ -350,9 +350,11 @@ class Model:
     storeys: tuple[Storey, ...]
     remarks: tuple[Remark, ...] = ()
     unmeasured: tuple[Unmeasured, ...] = ()
+    """Beams, columns and members that may rest on any beam of their storey"""
     slabs: tuple[Slab, ...] = ()
     """Level slabs, which beams may be cast with"""
-    """Beams, columns and members that may rest on any beam of their storey"""
+    mapped: frozenset[str] = frozenset()
+    """Fields of the brief's mapping of which some beam in scope has a property"""
 
 
 class Load(NamedTuple):

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Callable, Collection, Iterable, Mapping, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from pathlib import Path
 
 from ifccheck import __version__, results
@@ -14,13 +14,16 @@ from ifccheck.brief.load import load_brief
 from ifccheck.brief.loads import upward_remarks
 from ifccheck.brief.merging import Matches
 from ifccheck.brief.model import Brief, ScheduleRow
+from ifccheck.brief.places import did_you_mean
 from ifccheck.brief.schedule import read_schedule
 from ifccheck.brief.selecting import (
     Found,
+    check_mapping,
     check_reached,
     check_rows_reached,
     check_scope,
     join,
+    mapping_remarks,
     selections,
 )
 from ifccheck.brief.zones import schedule_remarks, with_schedule
@@ -30,6 +33,7 @@ from ifccheck.ifc.reader import read_model
 from ifccheck.ifc.scoping import NO_CHOICE, Choice, choose
 from ifccheck.ifc.selection import select
 from ifccheck.ifc.step_table import make_step_table
+from ifccheck.ifc.suggestions import all_properties
 from ifccheck.memory import uncollected
 from ifccheck.outputs import write_all
 from ifccheck.publish.report import Report
@@ -100,11 +104,13 @@ class Run:
 @uncollected()
 def rate(models: Sequence[Path], brief_path: Path, say: Say = lambda _: None) -> Run:
     """Rate every beam of the models by the brief."""
+    check_order(models, brief_path)
     plan = make_plan(brief_path)
     reads = read_models(models, plan.brief, say)
     found = tuple(find_beams(read, plan) for read in reads)
     check_reached(plan.brief, found)
     check_rows_reached(plan.brief, plan.schedule, found)
+    check_mapping(plan.brief, [read.model.mapped for read in reads], _properties_of(reads))
     rated = tuple(
         rate_model(read, join(plan.brief, plan.schedule, of_model), plan, found, say)
         for read, of_model in zip(reads, found, strict=True)
@@ -112,10 +118,33 @@ def rate(models: Sequence[Path], brief_path: Path, say: Say = lambda _: None) ->
     return Run(plan, rated)
 
 
+MODEL_SUFFIXES = (".ifc", ".ifczip", ".ifcxml")
+
+
+def check_order(models: Sequence[Path], brief_path: Path) -> None:
+    """Refuse a model given as the brief."""
+    if brief_path.suffix.lower() not in MODEL_SUFFIXES:
+        return
+    swapped = [path for path in models if path.suffix.lower() not in MODEL_SUFFIXES]
+    advice = (
+        f"it and {swapped[0]} look swapped: give the model first, and the brief with --brief"
+        if swapped
+        else "give the engineer's brief (TOML) with --brief"
+    )
+    raise UsageError(f"{brief_path}: is a model, not a brief: {advice}")
+
+
+def _properties_of(reads: Sequence[Read]) -> Callable[[], list[str]]:
+    return lambda: [
+        name for read in reads for name in all_properties(read.opened, read.model.beams)
+    ]
+
+
 def make_plan(brief_path: Path) -> Plan:
     """Read the brief with the standard, cases and combinations that it names."""
     brief = load_brief(brief_path)
     standard = _standard(brief)
+    _check_categories(brief, standard)
     cases = cases_of(brief)
     stated = [c for c in combinations_of(brief) if c.kind == "strength"]
     published = [c for c in standard.combinations(cases) if c.kind == "strength"]
@@ -163,6 +192,19 @@ def _shear_method(brief: Brief, standard: Standard) -> str:
     return method
 
 
+def _check_categories(brief: Brief, standard: Standard) -> None:
+    """Refuse a category that the standard does not know: it would silently count as another."""
+    for case in brief.cases:
+        named = case.category
+        if named is not None and named.strip().lower() not in standard.categories:
+            place = brief.at(f"cases.{case.name}.category")
+            raise BriefError(
+                f"{place}: unknown category '{named}':"
+                f" {did_you_mean(named, list(standard.categories))}; without a category the case"
+                " takes the most onerous factors"
+            )
+
+
 @uncollected()
 def read_models(models: Sequence[Path], brief: Brief | None, say: Say) -> tuple[Read, ...]:
     """Open and read the models; their names must differ, since results are named after them."""
@@ -192,7 +234,8 @@ def _read(path: Path, brief: Brief | None, say: Say) -> Read:
             f"{path}: holds no beam (IfcBeam); export the model with its beams, or name what they"
             " are under [scope] of the brief"
         )
-    return Read(opened, model, choice.reached)
+    remarks = (*model.remarks, *(mapping_remarks(brief, model.mapped) if brief else ()))
+    return Read(opened, replace(model, remarks=remarks), choice.reached)
 
 
 def _choice(opened: OpenedModel, brief: Brief | None) -> Choice:

@@ -129,7 +129,7 @@ def _case_text(
 ) -> str:
     if unrated_keys:
         beams = "1 beam" if len(unrated_keys) == 1 else f"{len(unrated_keys)} beams"
-        return f"not rated: {beams} that it reaches cannot be rated"
+        return f"cannot be said: an input or a check is not settled of {beams} that it reaches"
     if governing is None:
         return "no beam limits it"
     safe = next(each for each in ratings[governing].safe_loads if each.case == case)

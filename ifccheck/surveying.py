@@ -22,6 +22,7 @@ from ifccheck.pipeline import (
     Plan,
     Read,
     Say,
+    check_order,
     find_beams,
     gather_model,
     make_plan,
@@ -48,6 +49,8 @@ def survey(
     models: Sequence[Path], brief_path: Path | None = None, say: Say = lambda _: None
 ) -> tuple[Surveyed, ...]:
     """Tell what models hold and what a rating would lack, with a brief or before there is one."""
+    if brief_path:
+        check_order(models, brief_path)
     plan = make_plan(brief_path) if brief_path else silent_plan()
     brief = plan.brief if brief_path else None
     reads = read_models(models, brief, say)

@@ -329,4 +329,4 @@ def factor_state(factor: float) -> str:
 
 
 def _metres(length: float) -> float:
-    return round(length / 1000.0, 6)
+    return round(length / 1000.0, 6) + 0.0  # never -0.0

@@ -222,8 +222,8 @@ class Brief:
     defaults: Defaults
     sources: tuple[SourceName, ...]
     schedule: Path | None
-    schedule_optional: bool
-    """True where rows of the schedule may reach no beam."""
+    reinforcement_optional: bool
+    """True where rows of the schedule may reach no beam, and the mapping no property."""
     property_mapping: Mapping[ReinforcementField, str]
     """Field to "Set.Property", either with ``*`` for any characters."""
     lines: Mapping[str, int]

@@ -2,10 +2,12 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator, Mapping, Sequence
+from collections.abc import Callable, Iterator, Mapping, Sequence, Set
 
+from ifccheck.beam import Remark
 from ifccheck.brief.mark_ranges import expanded
 from ifccheck.brief.model import Brief, Entry, ScheduleRow, Selection
+from ifccheck.brief.places import did_you_mean
 from ifccheck.errors import BriefError
 from ifccheck.units import clipped
 
@@ -72,13 +74,20 @@ def check_reached(brief: Brief, found: Sequence[Found]) -> None:
 
     An entry with ``optional = true`` may reach none.
     """
+    parts = [place for entry in brief.entries() for place, _ in parts_of(entry)]
+    none = len(parts) > 1 and not any(of_model[place] for of_model in found for place in parts)
+    advice = (
+        f", like all {len(parts)} marks and queries of the brief, which looks like that of another"
+        " model: give the model that it was written for, or correct them"
+        if none
+        else ": correct it, or write optional = true"
+    )
     for entry in brief.entries():
         for place, part in parts_of(entry):
             if not entry.optional and not any(of_model[place] for of_model in found):
                 key = "where" if part.where is not None else "beams"
                 raise BriefError(
-                    f"{brief.where(entry, key)}: {clipped(part.said, 120)} reaches no beam:"
-                    " correct it, or write optional = true"
+                    f"{brief.where(entry, key)}: {clipped(part.said, 120)} reaches no beam{advice}"
                 )
 
 
@@ -88,7 +97,7 @@ def check_rows_reached(brief: Brief, rows: Sequence[ScheduleRow], found: Sequenc
     A row that says so in its column ``optional``, or any row where the brief says so, may.
     """
     for row in rows:
-        if brief.schedule_optional or row.optional:
+        if brief.reinforcement_optional or row.optional:
             continue
         for part in unreached(row, found):
             raise BriefError(
@@ -96,6 +105,42 @@ def check_rows_reached(brief: Brief, rows: Sequence[ScheduleRow], found: Sequenc
                 " yes for it in a column 'optional', or optional = true under [reinforcement] of"
                 f" {brief.file_name}"
             )
+
+
+def mapping_remarks(brief: Brief, held: Set[str]) -> tuple[Remark, ...]:
+    """Return a remark for every entry of the mapping that reaches no property in a model."""
+    return tuple(
+        Remark(
+            None,
+            "reinforcement",
+            f"reinforcement.properties.{field}: no beam of the model has {clipped(place, 120)}",
+            "doubt",
+        )
+        for field, place in brief.property_mapping.items()
+        if field not in held
+    )
+
+
+def check_mapping(
+    brief: Brief, held: Sequence[Set[str]], properties: Callable[[], Sequence[str]]
+) -> None:
+    """Raise BriefError for a mapping that reaches no property in any model of the run.
+
+    Unseen it would leave the field to another source or to a default that is less. ``properties``
+    gives the "Set.Property" that beams have, to tell which may be meant.
+    """
+    if brief.reinforcement_optional:
+        return
+    for field, place in brief.property_mapping.items():
+        if any(field in of_model for of_model in held):
+            continue
+        known = properties()
+        own = [name for name in known if name.startswith(f"{place.partition('.')[0]}.")]
+        raise BriefError(
+            f"{brief.at(f'reinforcement.properties.{field}')}: {clipped(place, 120)} reaches no"
+            f" property of a beam: {did_you_mean(place, own or list(known))}; correct it, or write"
+            " optional = true under [reinforcement]"
+        )
 
 
 def unreached(row: ScheduleRow, found: Sequence[Found]) -> Iterator[Selection]:

@@ -23,6 +23,8 @@ ASKED = "(write slab_flange = true for it under [[beams]] where both are cast as
 ON_TOP_ASKED = '(write slab_flange = "on top" for it under [[beams]] where both are one)'
 NOT_BESIDE = "no level plate of one thickness was found to reach out from the beam"
 NOT_INCLUDED = "weight of slab not included"
+ROUNDING = 0.005
+"""Share of the slab's weight that the loads may fall short by: the engineer writes three digits"""
 WEIGHT = "slab that counts as a flange is not in the self weight: its weight must be in the loads"
 
 
@@ -162,11 +164,13 @@ def _too_light(beam: Beam, flanges: Sequence[Flange], asked: Asked, loads: Seque
         for load in loads
         if load.kind != "moment" and load.case in asked.permanent
     )
-    if given >= weight:
+    if given >= (1.0 - ROUNDING) * weight:
         return ""
+    pairs = [[show(each, "force", digits) for each in (given, weight)] for digits in (3, 4)]
+    said, needed = next((pair for pair in pairs if pair[0] != pair[1]), pairs[-1])
     return (
-        f"{NOT_INCLUDED}: the permanent loads, {show(given, 'force')} in all, cannot hold that of"
-        f" what counts as a flange, {show(weight, 'force')}"
+        f"{NOT_INCLUDED}: the permanent loads, {said} in all, cannot hold that of what counts as"
+        f" a flange, {needed}"
     )
 
 

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Iterator
+from collections.abc import Iterable, Iterator, Mapping
 from typing import NamedTuple
 
 from ifccheck.ifc.context import Context
@@ -39,6 +39,10 @@ class Places:
             own += [one for one in of_type if one.place not in known]
         return [one for one in own if _says_anything(one.value)]
 
+    def fields_of(self, context: Context, owner: int) -> set[str]:
+        """Return the fields of which an object, or a type, has a property itself, be it blank."""
+        return {one.field for one in self._in_sets_of(context, owner)}
+
     def _in_sets_of(self, context: Context, owner: int) -> Iterator[Stated]:
         for set_name, set_id in context.properties.held(owner):
             wanted = self._wanted(set_name)
@@ -56,6 +60,21 @@ class Places:
                 (field, name) for field, pattern, name in self._cuts if fits(pattern, set_name)
             )
         return self._of_set[set_name]
+
+
+def fields_held(
+    context: Context, beams: Iterable[int], mapping: Mapping[str, str]
+) -> frozenset[str]:
+    """Return the fields of a mapping of which some beam, or its type, has a property."""
+    places, left, seen = Places(mapping.items()), set(mapping), set[int]()
+    for beam in beams:
+        if not left:
+            break
+        type_id = context.relations.type_of(beam)
+        owners = {beam, beam if type_id is None else type_id} - seen
+        seen |= owners
+        left -= {field for owner in owners for field in places.fields_of(context, owner)}
+    return frozenset(mapping) - left
 
 
 def _cuts(place: str) -> Iterator[tuple[str, str]]:

@@ -14,6 +14,7 @@ from ifccheck.ifc.context import BeamFrame, Context, make_context
 from ifccheck.ifc.described import sets_described
 from ifccheck.ifc.entity import ILL_TYPED
 from ifccheck.ifc.lexer import EXPORT_AGAIN
+from ifccheck.ifc.mapped import fields_held
 from ifccheck.ifc.members import MemberReader, members_of
 from ifccheck.ifc.opening import OpenedModel
 from ifccheck.ifc.plain_bodies import PlainBodies
@@ -111,6 +112,7 @@ def _read(
         ),
         unmeasured=members.unmeasured,
         slabs=SlabReader(context, profiles).read() if beams and choice.slabs else (),
+        mapped=fields_held(context, (beam.step_id for beam in beams), mapping),
     )
 
 

@@ -49,6 +49,13 @@ def bars_in_file(opened: OpenedModel) -> int:
     )
 
 
+def all_properties(opened: OpenedModel, beams: Sequence[Beam]) -> tuple[str, ...]:
+    """Return "Set.Property" of every property of beams, or of their types, each once."""
+    context = make_context(opened.file, opened.schema)
+    sets = [context.properties.of(beam.step_id) for beam in beams]
+    return tuple({f"{name}.{key}": None for one in sets for name in one for key in one[name]})
+
+
 def properties_of_steel(opened: OpenedModel, beams: Sequence[Beam]) -> tuple[PropertySeen, ...]:
     """Return the properties that may tell of the reinforcement of beams, most frequent first."""
     context = make_context(opened.file, opened.schema)

@@ -65,6 +65,15 @@ def number_and_unit(value: float, unit: str) -> tuple[str, str]:
     return number, shown
 
 
+def metres(length: float, unknown: str = "–") -> str:
+    """Return a place along a beam in metres, for a column; nothing is never negative.
+
+    >>> metres(2104.0), metres(-0.4), metres(math.nan)
+    ('2.10', '0.00', '–')
+    """
+    return f"{length / 1000.0:z.2f}" if math.isfinite(length) else unknown
+
+
 def measure_words(value: float | str | bool, measure: str) -> tuple[str, str | None]:
     """Return figure and unit of a thing that a rating rests on; no unit for a text."""
     if isinstance(value, str):

@@ -28,7 +28,7 @@ class CaseSummary:
     """For people, on what stands behind the factor: "B-204 falls short first in shear" """
     beams_reached: int
     unrated_in_path: tuple[str, ...] = ()
-    """Keys of the beams which the case reaches and which are not rated"""
+    """Keys of the beams which the case reaches and of which something is not settled"""
 
 
 @dataclass(frozen=True, slots=True)

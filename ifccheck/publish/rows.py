@@ -7,6 +7,7 @@ from collections.abc import Iterable, Mapping
 from dataclasses import dataclass
 
 from ifccheck.beam import Beam, Model
+from ifccheck.publish.quantities import metres
 from ifccheck.publish.report import Report, ratings_in_order
 from ifccheck.publish.tint import band
 from ifccheck.publish.words import (
@@ -104,14 +105,14 @@ def _row(
         gauge=_gauge(rating.utilisation) if known else "",
         governs=worst.title if worst else "",
         governs_index=str(governing[worst.title]) if worst else "",
-        x=_metres(worst.position) if worst else "",
+        x=metres(worst.position, "") if worst else "",
         safe=tuple(_safe(rating, case.case) for case in report.cases),
     )
 
 
 def _span(beam: Beam, report: Report) -> str:
     span = report.spans.get(beam.key)
-    return _metres(span.end - span.start) if span else ""
+    return metres(span.end - span.start, "") if span else ""
 
 
 def _first(texts: Iterable[str]) -> str:
@@ -124,10 +125,6 @@ def _sortable(value: float) -> str:
     if math.isnan(value):
         return ""
     return "Infinity" if math.isinf(value) else repr(value)
-
-
-def _metres(place: float) -> str:
-    return f"{place / 1000.0:.2f}" if math.isfinite(place) else ""
 
 
 def _safe(rating: Rating, case: str) -> SafeCells:

@@ -24,6 +24,7 @@ from ifccheck.publish.drawings import diagram, section
 from ifccheck.publish.elevation import bar_words, elevation, load_words, stirrup_words
 from ifccheck.publish.quantities import (
     measure_words,
+    metres,
     number_and_unit,
     quantity_words,
     typographic,
@@ -329,8 +330,3 @@ class _Basis:
 def _basis(item: BasisItem) -> _Basis:
     value, unit = measure_words(item.value, item.measure)
     return _Basis(item.label, value, unit, item.source, item.assumed)
-
-
-def metres(place: float) -> str:
-    """Return a place along a beam in m, without its unit."""
-    return f"{place / 1000.0:.2f}" if math.isfinite(place) else "–"

@@ -11,9 +11,9 @@ from ifccheck.beam import Beam
 from ifccheck.findings import Finding, State, Survey
 from ifccheck.publish.page import Tally, dress, figures, left_out, proportion
 from ifccheck.publish.plan import Look, storey_plans
-from ifccheck.publish.quantities import quantity_words
+from ifccheck.publish.quantities import metres, quantity_words
 from ifccheck.publish.rows import storey_names
-from ifccheck.publish.sheet_html import metres, packed
+from ifccheck.publish.sheet_html import packed
 from ifccheck.publish.survey_sheet import survey_sheet_html
 from ifccheck.publish.survey_words import (
     Told,

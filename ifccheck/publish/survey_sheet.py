@@ -11,8 +11,8 @@ from ifccheck.beam import Bars, Beam, DescribedZone, Given, Load, Outline, Run, 
 from ifccheck.findings import Finding
 from ifccheck.publish.drawings import section
 from ifccheck.publish.elevation import elevation
-from ifccheck.publish.quantities import quantity_words
-from ifccheck.publish.sheet_html import SteelRow, bar_row, beam_facts, metres, stirrup_row
+from ifccheck.publish.quantities import metres, quantity_words
+from ifccheck.publish.sheet_html import SteelRow, bar_row, beam_facts, stirrup_row
 from ifccheck.publish.survey_words import state_band, zone_words
 from ifccheck.publish.templates import template
 from ifccheck.publish.words import CURES, head_of, outline_size

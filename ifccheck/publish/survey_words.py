@@ -36,7 +36,7 @@ SETTLED = {
 }
 """What settles a thing that is missing, by how it begins."""
 
-_OF_BARS = re.compile(r"(?:bars?|stirrups?|mesh(?:es)?) [^:]*: (?=.)")
+_OF_BARS = re.compile(r"^(?:bars?|stirrups?|mesh(?:es)?) [^:]*: (?=.)")
 _NUMBERS = re.compile(r"\d+(?:\.\d+)?")
 
 

@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import math
 from collections.abc import Iterable, Iterator, Sequence
 from pathlib import Path
 from typing import TYPE_CHECKING
@@ -12,6 +11,7 @@ from rich.table import Table
 from rich.text import Text
 
 from ifccheck.beam import Beam, Verdict
+from ifccheck.publish.quantities import metres
 from ifccheck.publish.report import Report, ratings_in_order
 from ifccheck.publish.terminal_parts import CAUTION, SHORT, Cell, Terminal
 from ifccheck.publish.words import (
@@ -100,7 +100,7 @@ def _short_row(rating: Rating, beam: Beam, to: Terminal) -> list[Cell]:
     worst = rating.governing
     if worst is None:
         return [beam.mark, beam.storey, used, "", "", ""]
-    return [beam.mark, beam.storey, used, worst.title, _metres(worst.position), worst.clause]
+    return [beam.mark, beam.storey, used, worst.title, metres(worst.position), worst.clause]
 
 
 def _unrated(report: Report, to: Terminal) -> Table | None:
@@ -135,7 +135,3 @@ def standards_table(
         )
     names = ("standard", "title", "edition", "actions", "shear methods", "checks")
     return to.table(names, rows)
-
-
-def _metres(place: float) -> str:
-    return f"{place / 1000.0:.2f}" if math.isfinite(place) else "–"

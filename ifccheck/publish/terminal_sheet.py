@@ -12,7 +12,7 @@ from rich.text import Text
 from ifccheck.beam import Load
 from ifccheck.publish.arising import reaction_rows, share_rows, span_words, support_words
 from ifccheck.publish.elevation import load_words
-from ifccheck.publish.quantities import measure_words
+from ifccheck.publish.quantities import measure_words, metres
 from ifccheck.publish.terminal_parts import CAUTION, SHORT, Cell, Terminal
 from ifccheck.publish.words import (
     factor_words,
@@ -94,9 +94,9 @@ def _tables(sheet: Sheet, to: Terminal) -> Iterator[Table]:
 
 
 def _load(load: Load) -> Sequence[str]:
-    end = _metres(load.end) if load.kind == "line" else ""
+    end = metres(load.end) if load.kind == "line" else ""
     face = "soffit" if load.face == "bottom" else "top"
-    return load.case, load_words(load), _metres(load.start), end, face, load.origin
+    return load.case, load_words(load), metres(load.start), end, face, load.origin
 
 
 def _check(check: SheetCheck, to: Terminal) -> Iterator[RenderableType]:
@@ -147,7 +147,7 @@ def _answers(rating: Rating, to: Terminal) -> Iterator[RenderableType]:
             ("rated case", ">factor", "largest safe load", "limited by", ">x [m]"),
             [
                 (safe.case, factor_words(safe.factor), safe.text, safe.governing,
-                 _metres(safe.position))
+                 metres(safe.position))
                 for safe in rating.safe_loads
             ],
         )  # fmt: skip
@@ -160,7 +160,3 @@ def _basis(rating: Rating) -> Iterable[Sequence[Cell]]:
         value, unit = measure_words(item.value, item.measure)
         source = f"assumed: {item.source}" if item.assumed else item.source
         yield item.label, f"{value} {unit or ''}".strip(), source
-
-
-def _metres(place: float) -> str:
-    return f"{place / 1000.0:.2f}" if math.isfinite(place) else "–"

@@ -117,7 +117,7 @@ def utilisation_words(utilisation: float) -> str:
 def factor_words(factor: float) -> str:
     """Return a rating factor for people."""
     if math.isnan(factor):
-        return "not rated"
+        return "not known"
     return "not limited" if math.isinf(factor) else show_ratio(factor)
 
 

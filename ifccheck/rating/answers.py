@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Iterator, Sequence
+from collections.abc import Iterator, Mapping, Sequence
 from typing import NamedTuple
 
 import numpy as np
@@ -129,10 +129,27 @@ def _no_word_of_stirrups(subject: Subject) -> str:
     ]
     if not others:
         return "no source says whether there are stirrups"
+    others = list(dict.fromkeys(_TELLING[each] for each in others))
     return (
-        f"{used} are used, which do not say whether there are stirrups, as {' and '.join(others)}"
-        " does: reinforcement.sources of the brief gives the order"
+        f"{_SILENT[used]} whether there are stirrups, as {' and '.join(others)}: write them there"
+        ' (stirrups = "none" where there are none), or put the source that tells of them first in'
+        " reinforcement.sources of the brief"
     )
+
+
+_SILENT: Mapping[str, str] = {
+    "schedule": "the schedule is used, which does not say",
+    "bars": "the modelled bars are used, which do not say",
+    "sections": "the section definitions are used, which do not say",
+    "properties": "the property sets are used, which do not say",
+}
+_TELLING: Mapping[str, str] = {
+    "schedule": "the schedule does",
+    "bars": "the modelled bars do",
+    "sections": "the section definitions do",
+    "properties": "the property sets do",
+}
+"""What is used and does not speak of stirrups, and what does"""
 
 
 def _missing(subject: Subject) -> str:

@@ -18,7 +18,7 @@ from ifccheck.standards import Check, LimitState
 from ifccheck.units import show, show_ratio
 
 _used = attrgetter("utilisation")
-_UNKNOWN_CASE = "cannot be said: the beam is not rated"
+_UNKNOWN_CASE = "cannot be said: an input or a check of the beam is not settled"
 
 
 @dataclass(frozen=True, slots=True)
@@ -159,7 +159,7 @@ def safe_loads(
 ) -> list[SafeLoad | None]:
     """What a rated case may grow to on each beam (B); None where none of its ``loads`` acts.
 
-    ``complete`` is False where the beam is not rated.
+    ``complete`` is False where something of the beam is not settled, whatever its verdict.
     """
     columns = (factors.factor, factors.state, factors.x)
     rows = zip(
@@ -185,7 +185,7 @@ def _assigned(loads: Sequence[Load]) -> str:
 
 
 def _unknown(case: str, loads: Sequence[Load]) -> SafeLoad:
-    """Of a beam that is not rated."""
+    """Of a beam of which something is not settled."""
     return SafeLoad(case, math.nan, _assigned(loads), math.nan, "", _UNKNOWN_CASE, "", math.nan, "")
 
 

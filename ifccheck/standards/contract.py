@@ -154,6 +154,8 @@ class Standard:
     """The first is the default."""
     combinations: Callable[[Sequence[Case]], tuple[Combination, ...]]
     """Strength (and service) combinations for the cases of a run, ``self`` included."""
+    categories: tuple[str, ...]
+    """Occupancies that a case may name, in lower case"""
     clear_spacing: Callable[[float, float], float]
     """Least clear distance [mm] between bars of a diameter, given the aggregate size."""
     density_factor: Callable[[float | None], float]

@@ -8,7 +8,7 @@ from __future__ import annotations
 from ifccheck.mechanics.arrays import Floats
 from ifccheck.standards.contract import Note, Standard
 from ifccheck.standards.csa_a23_3_14 import flange, flexure
-from ifccheck.standards.csa_a23_3_14.combinations import ACTIONS, combinations
+from ifccheck.standards.csa_a23_3_14.combinations import ACTIONS, CATEGORIES, combinations
 from ifccheck.standards.csa_a23_3_14.longitudinal import LONGITUDINAL
 from ifccheck.standards.csa_a23_3_14.materials import density_factor
 from ifccheck.standards.csa_a23_3_14.minimum_stirrups import MINIMUM_STIRRUPS, idle_stirrups
@@ -93,6 +93,7 @@ STANDARD = Standard(
     actions=ACTIONS,
     shear_methods=("general", "simplified"),
     combinations=combinations,
+    categories=CATEGORIES,
     clear_spacing=clear_spacing,
     density_factor=density_factor,
     prepare=prepare,

@@ -38,8 +38,10 @@ ORDINARY_CATEGORIES = frozenset(
         "stairs",
     }
 )
-"""Occupancies that are neither storage, equipment area nor service room. A category that is
-not named here, or none at all, takes the greater companion factor."""
+"""Occupancies that are neither storage, equipment area nor service room. Whatever is not named
+here, or no category at all, takes the greater companion factor."""
+
+CATEGORIES = (*sorted(ORDINARY_CATEGORIES), "storage", "equipment", "service room")
 
 STORAGE_INCREASE = 0.5
 """Added to the companion factor of L in storage, equipment areas and service rooms,
