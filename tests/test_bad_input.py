@@ -380,6 +380,62 @@ def test_an_optional_schedule_row_for_an_unknown_mark_is_a_remark(
     assert any("B-9" in remark["text"] for remark in data["remarks"])
 
 
+def mapped(entry: str, *, optional: bool = False) -> str:
+    said = "[reinforcement]\noptional = true\n" if optional else ""
+    return f"{GOOD_BRIEF}\n{said}[reinforcement.properties]\n{entry}\n"
+
+
+@pytest.mark.parametrize(
+    ("entry", "meant"),
+    [
+        ('bottom = "BeamRating_Reinforcement.BotomBars"', "did you mean BeamRating_Rein"),
+        ('cover = "BeamRating_Reinforcement.Zz"', "known are BeamRating_Reinforcement.TopBars"),
+        ('cover = "Beam Rating Reinforcement.*Bars"', "BeamRating_Reinforcement."),
+    ],
+)
+def test_a_mapping_that_reaches_no_property(folder: Path, entry: str, meant: str) -> None:
+    (folder / "brief.toml").write_text(mapped(entry), encoding="utf-8")
+    field = entry.partition(" ")[0]
+    refused(folder, 2, f"brief.toml: reinforcement.properties.{field} (line ", "reaches no", meant,
+            "optional = true under [reinforcement]")  # fmt: skip
+    (folder / "brief.toml").write_text(mapped(entry, optional=True), encoding="utf-8")
+    assert rate(folder).stderr == ""
+    data = json.loads((folder / "out" / "hall-rating.json").read_text(encoding="utf-8"))
+    (remark,) = [one for one in data["remarks"] if field in one["text"]]
+    assert remark["kind"] == "doubt"
+
+
+def test_a_mapping_that_reaches_a_property(folder: Path) -> None:
+    for entry in ('bottom = "BeamRating_*.BottomBars"', 'top = "BeamRating_Reinforcement.TopBars"'):
+        (folder / "brief.toml").write_text(mapped(entry), encoding="utf-8")
+        assert rate(folder).stderr == ""
+
+
+def test_an_unknown_category(folder: Path) -> None:
+    for said, meant in (("ofices", "did you mean offices?"), ("zzz", "assembly, balcony")):
+        text = GOOD_BRIEF.replace("[cases.press]", f'category = "{said}"\n[cases.press]')
+        (folder / "brief.toml").write_text(text, encoding="utf-8")
+        refused(folder, 2, "brief.toml: cases.floor.category (line ", f"'{said}'", meant)
+
+
+@pytest.mark.parametrize("command", ["rate", "survey"])
+def test_model_and_brief_the_wrong_way_round(folder: Path, command: str) -> None:
+    model, brief_path = folder / "hall.ifc", folder / "brief.toml"
+    out = ("--out", str(folder / "out"))
+    swapped = CliRunner().invoke(main, [command, str(brief_path), "--brief", str(model), *out])
+    check_refused(swapped, 2, str(model), "is a model, not a brief", f"{brief_path} look swapped")
+    twice = CliRunner().invoke(main, [command, str(model), "--brief", str(model), *out])
+    check_refused(twice, 2, str(model), "is a model, not a brief", "with --brief")
+
+
+def test_a_brief_of_another_model(folder: Path) -> None:
+    other = [LOAD.replace("B-*", mark) for mark in ("X-1", "X-2")]
+    (folder / "brief.toml").write_text(brief(*other), encoding="utf-8")
+    refused(folder, 2, "loads[1].beams", "like all 2 marks and queries", "another model")
+    (folder / "brief.toml").write_text(brief(LOAD, other[0]), encoding="utf-8")
+    refused(folder, 2, "loads[2].beams", "reaches no beam: correct it")
+
+
 # Places of results -------------------------------------------------------------------------------
 
 

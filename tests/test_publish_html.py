@@ -244,6 +244,12 @@ def test_reasons_that_differ_by_the_members_named_are_one_row() -> None:
     ]
     many = reason_groups(unrated(f"{i}", f"reactions not included: C-{i}") for i in range(9))
     assert [group.text for group in many] == ["reactions not included: C-0; C-1; C-2; and 6 more"]
+    told = [f"bars do not fit from {x} m to 1.50 m: 0.85 m wide" for x in (0, 2, 4)]
+    fitting = [reason_groups(map(unrated, "abc", texts)) for texts in (told, told[:1])]
+    assert [(group.text, group.beams) for groups in fitting for group in groups] == [
+        (f"e.g. {told[0]}", ("a", "b", "c")),
+        (told[0], ("a",)),
+    ]
     cures = [group.cure for group in groups]
     assert "loads_complete = true" in cures[0]
     assert "unloaded = true" in cures[1]
@@ -261,7 +267,7 @@ def test_a_beam_that_is_not_rated_says_why_on_its_sheet() -> None:
 
 def test_a_case_with_an_unrated_beam_in_its_path_has_no_factor() -> None:
     row = PAGE.split('<section id="cases">')[1].split("</section>")[0].split("hoist")[1]
-    assert "not rated" in row
+    assert "not known" in row
     assert re.search(r"\d\.\d\d", row) is None
 
 

@@ -281,7 +281,10 @@ def test_shear_names_the_source_that_knows_of_stirrups(tmp_path: Path) -> None:
     model = written(Setting(), replace(PLAIN, notation=NOTATION), BOTTOM, TOP)
     answer = rated(tmp_path / "by order", model, text())
     assert answer["verdict"] == "not rated"
-    assert "which do not say whether there are stirrups, as properties does" in telling(answer)
+    assert (
+        "the section definitions are used, which do not say whether there are stirrups, as the"
+        ' property sets do: write them there (stirrups = "none"'
+    ) in telling(answer)
     order = 'sources = ["properties", "sections"]'
     assert rated(tmp_path / "turned", model, text(sources=order))["verdict"] == "adequate"
 
@@ -348,7 +351,10 @@ def test_properties_that_contradict_one_another_never_rate_a_beam(
             made.rooted("IfcRelDefinesByProperties", f"{number}", RelatedObjects=[element],
                         RelatingPropertyDefinition=held)  # fmt: skip
 
-    entries = '[reinforcement.properties]\nbottom = "Set*.Bottom"\nstirrups = "*.Links"\n'
+    entries = (
+        "[reinforcement]\noptional = true\n"
+        '[reinforcement.properties]\nbottom = "Set*.Bottom"\nstirrups = "*.Links"\n'
+    )
     simple = text(entries).replace('"fixed"', '"pinned"')
     answer = rated(tmp_path_factory.mktemp("sets"), written(Setting(), change=sets), simple)
     said = {one.replace(" ", "") for one in bottoms if one}

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 from collections.abc import Sequence
 from dataclasses import replace
 from pathlib import Path
@@ -435,6 +436,17 @@ def test_slabs_near_are_named_by_their_boxes() -> None:
         plate("covering", 3000.0, 525.0, "IfcCovering"),
     ]  # fmt: skip
     assert Slabs([beam], (), members).names_near(beam) == ("S-1 (IfcSlab)",)
+
+
+def test_the_weight_of_the_slab_as_it_is_entered_is_enough() -> None:
+    """10.26 kN/m, of which three digits were written; beyond that the figures must differ."""
+    said, weight = asked(met(made_slab())), 2.85 * 0.15 * 24.0
+    for share, light in ((0.996, False), (0.994, True)):
+        loads = (line("floor", share * weight)._replace(case="dead"),)
+        texts = [reason.text for reason in counted(made_beam(), said, loads).reasons]
+        assert len(texts) == light
+    given, needed = re.findall(r"([0-9.]+) kN", texts[0])
+    assert float(given) < float(needed)
 
 
 @pytest.mark.parametrize(("intensity", "light"), [(10.0, True), (10.5, False)])

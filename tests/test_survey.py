@@ -10,6 +10,7 @@ from click.testing import CliRunner, Result
 import ifccheck
 from ifccheck.cli import main
 from ifccheck.findings import Finding, State, Survey
+from ifccheck.publish.survey_words import gist
 from ifccheck.surveying import survey
 from tests.step_halls import Bar, Beam, Block, brief, hall, write
 
@@ -88,6 +89,7 @@ def test_bars_without_stirrups_are_doubted(tmp_path: Path) -> None:
     found = finding(surveyed(tmp_path, hall(beam)), "B-1")
     assert found.doubts == ("no stirrups are modelled: none are counted on",)
     assert found.state is State.DOUBTFUL
+    assert gist(found.doubts[0]) == found.doubts[0]
 
 
 def test_the_states_are_counted(tmp_path: Path) -> None:

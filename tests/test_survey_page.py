@@ -117,8 +117,8 @@ def test_doubts_that_differ_by_numbers_alone_are_one() -> None:
     assert gist("bars #1, #2: ends in a bend") == "ends in a bend"
     assert gist("material name 'B35': a doubt") == "material name 'B35': a doubt"
     told = told_of([("a", "cut over 3 mm"), ("b", "cut over 12.5 mm"), ("c", "other")])
-    assert [(each.text, each.beams) for each in told] == [
-        ("cut over 3 mm", ("a", "b")), ("other", ("c",)),
+    assert [(each.shown, each.beams) for each in told] == [
+        ("e.g. cut over 3 mm", ("a", "b")), ("other", ("c",)),
     ]  # fmt: skip
 
 

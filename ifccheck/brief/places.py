@@ -104,12 +104,15 @@ MOST_LISTED = 30
 """Known words that are listed where none is near"""
 
 
-def did_you_mean(word: str, known: list[str]) -> str:
-    """Return advice for an unknown word: the nearest known one, else all of them."""
+def did_you_mean(word: str, known: list[str], prefix: str = "") -> str:
+    """Return advice for an unknown word: the nearest known one, else all of them.
+
+    ``prefix`` goes before each that is named.
+    """
     lowered = {name.lower(): name for name in known}
     near = get_close_matches(word.lower(), lowered, n=1, cutoff=0.6)
     if near:
-        return f"did you mean {lowered[near[0]]}?"
+        return f"did you mean {prefix}{lowered[near[0]]}?"
     more = [f"{len(known) - MOST_LISTED} more"] if len(known) > MOST_LISTED else []
-    listed = ", ".join([*known[:MOST_LISTED], *more])
+    listed = ", ".join([*(f"{prefix}{name}" for name in known[:MOST_LISTED]), *more])
     return f"known are {listed}" if known else "none is known here"

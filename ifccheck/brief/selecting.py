@@ -134,13 +134,19 @@ def check_mapping(
     for field, place in brief.property_mapping.items():
         if any(field in of_model for of_model in held):
             continue
-        known = properties()
-        own = [name for name in known if name.startswith(f"{place.partition('.')[0]}.")]
         raise BriefError(
             f"{brief.at(f'reinforcement.properties.{field}')}: {clipped(place, 120)} reaches no"
-            f" property of a beam: {did_you_mean(place, own or list(known))}; correct it, or write"
+            f" property of a beam: {_meant(place, list(properties()))}; correct it, or write"
             " optional = true under [reinforcement]"
         )
+
+
+def _meant(place: str, known: list[str]) -> str:
+    """Which property may be meant: of the set that is named, if there is one."""
+    set_name, _, name = place.partition(".")
+    prefix = f"{set_name}."
+    own = [each.removeprefix(prefix) for each in known if each.startswith(prefix)]
+    return did_you_mean(name, own, prefix) if own else did_you_mean(place, known)
 
 
 def unreached(row: ScheduleRow, found: Sequence[Found]) -> Iterator[Selection]:

@@ -51,12 +51,12 @@ their width [mm]"""
 APART = 1.0
 """Depths between two openings from which on each stands alone"""
 
-RULE = (
+RULE = (  # its figures from memory
     "rule for openings: small up to a quarter of the depth in height and in length, with chords of"
     " a quarter of the depth or more, one depth off a support and a change of the section, half a"
     " depth off a concentrated load; there shear is carried over dv less the opening's height,"
     " over its length and half a depth on either side (after Mansur and Tan, Concrete Beams with"
-    " Openings, 1999, from memory, on the cautious side); openings in a row less than a depth"
+    " Openings, 1999, on the cautious side); openings in a row less than a depth"
     " apart, and such as lie one above another, are judged together; what is not small is not rated"
     " in shear; flexure is that of the outline which is left"
 )

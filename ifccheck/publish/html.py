@@ -65,7 +65,7 @@ def render(report: Report) -> str:
         remarks=[remark for remark in report.remarks if remark.kind != "doubt"],
         sources=_sources(report),
         combined=_combined(report.combinations),
-        combinations=_combinations(report.combinations),
+        combinations=_combinations(report),
         cautions=CAUTIONS,
         foot=foot_line(report),
         blocks=_blocks(report, rows),
@@ -175,6 +175,7 @@ def _assumption(assumption: Assumption, report: Report) -> _Assumption:
 class _Combination:
     name: str
     kind: str
+    labels: str
     factors: list[str]
 
 
@@ -182,11 +183,13 @@ def _combined(combinations: Iterable[Combination]) -> list[str]:
     return list(dict.fromkeys(case for combination in combinations for case in combination.factors))
 
 
-def _combinations(combinations: Sequence[Combination]) -> list[_Combination]:
-    cases = _combined(combinations)
+def _combinations(report: Report) -> list[_Combination]:
+    cases = _combined(report.combinations)
     return [
-        _Combination(c.name, c.kind, [_factors(c.factors.get(case)) for case in cases])
-        for c in combinations
+        _Combination(
+            c.name, c.kind, "; ".join(labels), [_factors(c.factors.get(case)) for case in cases]
+        )
+        for c, labels in zip(report.combinations, report.labels, strict=True)
     ]
 
 

@@ -12,7 +12,8 @@ nothing); factor ``rated``, ``not limited`` or ``not rated``.
     counts        adequate, falls_short, not_rated, out_of_scope
     rated_cases   case, nature, factor, factor_state, governing_beam, text, beams_reached,
                   unrated_in_path
-    combinations  name, kind, factors: case -> [unfavourable, favourable]
+    combinations  name, kind, labels (names by which beams call it where the rest of it does not
+                  act), factors: case -> [unfavourable, favourable]
     beams         key, global_id, ordinal, mark, name, tag, type, storey, material, length,
                   span (start, end, supports), verdict, utilisation, governing (name of a limit
                   state), limit_states, rated_cases, reasons, remarks, basis, checked,
@@ -30,7 +31,7 @@ from __future__ import annotations
 
 import json
 import math
-from collections.abc import Iterator
+from collections.abc import Iterator, Sequence
 from typing import Any
 
 from ifccheck.beam import Combination, OutOfScope, Remark
@@ -99,7 +100,9 @@ def _report(report: Report) -> Data:
             "out_of_scope": counts.out_of_scope,
         },
         "rated_cases": [_case(case) for case in report.cases],
-        "combinations": [_combination(combination) for combination in report.combinations],
+        "combinations": [
+            _combination(*each) for each in zip(report.combinations, report.labels, strict=True)
+        ],
         "beams": beam_texts(report),
         "out_of_scope": [_out_of_scope(member) for member in report.model.out_of_scope],
         "assumptions": [{"text": a.text, "beams": list(a.beams)} for a in report.assumptions],
@@ -127,9 +130,14 @@ def _case(case: CaseSummary) -> Data:
     }
 
 
-def _combination(combination: Combination) -> Data:
+def _combination(combination: Combination, labels: Sequence[str]) -> Data:
     factors = {case: list(pair) for case, pair in combination.factors.items()}
-    return {"name": combination.name, "kind": combination.kind, "factors": factors}
+    return {
+        "name": combination.name,
+        "kind": combination.kind,
+        "labels": list(labels),
+        "factors": factors,
+    }
 
 
 def _out_of_scope(member: OutOfScope) -> Data:

@@ -4,9 +4,10 @@ from __future__ import annotations
 
 import math
 from collections import Counter
-from collections.abc import Callable, Iterable, Mapping
+from collections.abc import Callable, Iterable, Iterator, Mapping
 from dataclasses import dataclass
 from functools import cached_property
+from itertools import combinations
 
 from ifccheck.beam import Beam, Combination, Line, Model, Nature, Remark, Span, Verdict
 from ifccheck.rating import Rating
@@ -92,6 +93,18 @@ class Report:
         return f"{self.standard_title} ({self.standard_edition})"
 
     @cached_property
+    def labels(self) -> tuple[tuple[str, ...], ...]:
+        """The other names by which ratings call each combination: on a beam a combination goes
+        without what does not act there."""
+        ratings = self.ratings.values()
+        used = {state.combination for rating in ratings for state in rating.limit_states}
+        used |= {safe.combination for rating in ratings for safe in rating.safe_loads}
+        return tuple(
+            tuple(label for label in _labels(each) if label in used and label != each.name)
+            for each in self.combinations
+        )
+
+    @cached_property
     def counts(self) -> Counts:
         """Number of beams by verdict."""
         verdicts = Counter(rating.verdict for rating in self.ratings.values())
@@ -118,6 +131,13 @@ class Report:
     @cached_property
     def _beams(self) -> dict[str, Beam]:
         return {beam.key: beam for beam in self.model.beams}
+
+
+def _labels(combination: Combination) -> Iterator[str]:
+    """Every name that a combination may go by, by the natures that act."""
+    natures = [nature for nature, _ in combination.terms]
+    for count in range(len(natures) + 1):
+        yield from map(combination.label, combinations(natures, count))
 
 
 def ratings_in_order(ratings: Iterable[Rating]) -> list[Rating]:

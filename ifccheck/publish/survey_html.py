@@ -221,4 +221,4 @@ class _Listed:
 
 def _listed(told: Told, rows: Mapping[str, _Row]) -> _Listed:
     cure = what_settles(told.text)
-    return _Listed(told.text, cure, [rows[key] for key in told.beams])
+    return _Listed(told.shown, cure, [rows[key] for key in told.beams])

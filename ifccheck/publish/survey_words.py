@@ -3,14 +3,14 @@
 from __future__ import annotations
 
 import re
-from collections.abc import Iterable
+from collections.abc import Iterable, Mapping
 from dataclasses import dataclass
 
 from ifccheck.beam import Beam, DescribedZone
 from ifccheck.findings import Finding, State, Survey
 from ifccheck.notation import show_bars, show_stirrups
 from ifccheck.publish.quantities import quantity_words
-from ifccheck.publish.words import NO_LOAD, head_of
+from ifccheck.publish.words import NO_LOAD, example_of, head_of, without_numbers
 
 STATES = {
     "supports unknown": "supports",
@@ -32,12 +32,21 @@ SETTLED = {
     " BeamRating_Reinforcement in the model",
     "the legs of the stirrups are not stated": "a schedule, or the modeller: 2 legs 10M @ 250",
     "no source says whether there are stirrups": "a schedule, or the modeller: none, if so",
+    "no longitudinal bar is among": "a schedule, named before bars in reinforcement.sources; or the"
+    " modeller: tie its main bars to the beam",
+    "bars lie in it or beside it that no relation ties to it": "the modeller: tie the bars to the"
+    " beam; or a schedule, named before bars in reinforcement.sources",
+    "bars do not fit": "the bars, the cover or the section, whichever is wrong: correct it in the"
+    " schedule or the model that gives it",
+    "hole in the body": "the modeller: model it as an opening (IfcOpeningElement) of the beam",
+    "section is in separate parts": "the modeller: make the body one solid all along the beam",
+    "its section runs out to nothing": "the modeller: correct the ends of the body",
+    "its ends are cut so obliquely": "the modeller: correct the ends of the body",
     "material unknown": "the modeller: a material that is named as concrete",
 }
 """What settles a thing that is missing, by how it begins."""
 
 _OF_BARS = re.compile(r"^(?:bars?|stirrups?|mesh(?:es)?) [^:]*: (?=.)")
-_NUMBERS = re.compile(r"\d+(?:\.\d+)?")
 
 
 @dataclass(frozen=True, slots=True)
@@ -45,6 +54,9 @@ class Told:
     """One thing that is said of several beams."""
 
     text: str
+    """As it is said of the first of them"""
+    shown: str
+    """For people: an example, where beams differ by their numbers"""
     beams: tuple[str, ...]
     """Keys"""
 
@@ -84,13 +96,18 @@ def gist(text: str) -> str:
 def told_of(said: Iterable[tuple[str, str]]) -> list[Told]:
     """Return texts, each given with the key of its beam, the most frequent first.
 
-    Those that differ by their numbers alone are one, told in the words of the first.
+    Those that differ by their numbers alone are one, with the first as an example.
     """
     groups: dict[str, dict[str, str]] = {}
     for key, text in said:
-        groups.setdefault(_NUMBERS.sub("0", text), {}).setdefault(key, text)
-    told = [Told(next(iter(texts.values())), tuple(texts)) for texts in groups.values()]
+        groups.setdefault(without_numbers(text), {}).setdefault(key, text)
+    told = [_told(texts) for texts in groups.values()]
     return sorted(told, key=lambda each: -len(each.beams))
+
+
+def _told(texts: Mapping[str, str]) -> Told:
+    """One thing that is said of beams, by key of the beam."""
+    return Told(next(iter(texts.values())), example_of(texts.values()), tuple(texts))
 
 
 def missing_of(survey: Survey, beams: Iterable[Beam]) -> list[Told]:

@@ -110,24 +110,25 @@ def _findings(beams: Sequence[Beam], survey: Survey, to: Terminal) -> Text:
         told = ", ".join(_share(each, beams) for each in states)
         lines.append(to.text(f"brief to state: {told}"))
     for each in doubts_of(survey, beams):
-        short = Told(head_of(each.text), each.beams)
+        head = head_of(each.shown)
+        short = Told(head, head, each.beams)
         lines.append(to.text(f"doubt: {_share(short, beams)}", style=SHORT))
     return Text("\n").join(lines) if lines else to.text("nothing missing")
 
 
 def _share(told: Told, beams: Sequence[Beam]) -> str:
     count = len(told.beams)
-    return told.text if count == len(beams) else f"{told.text} ({count} of {len(beams)})"
+    return told.shown if count == len(beams) else f"{told.shown} ({count} of {len(beams)})"
 
 
 def _whole(survey: Survey, to: Terminal) -> Iterator[RenderableType]:
     """What holds for the model as a whole."""
     beams = survey.model.beams
     if missing := missing_of(survey, beams)[:MOST_LISTED]:
-        rows = [(_count(told), told.text, what_settles(told.text)) for told in missing]
+        rows = [(_count(told), told.shown, what_settles(told.text)) for told in missing]
         yield to.table((">beams", "missing for a rating", "what settles it"), rows)
     if doubts := doubts_of(survey, beams)[:MOST_LISTED]:
-        yield to.table((">beams", "doubt"), [(_count(told), told.text) for told in doubts])
+        yield to.table((">beams", "doubt"), [(_count(told), told.shown) for told in doubts])
     ready = len(beams) - survey.count(State.INCOMPLETE)
     doubtful = survey.count(State.DOUBTFUL)
     doubts_only = f" ({doubtful} with doubts)" if doubtful else ""
@@ -145,7 +146,7 @@ def _count(told: Told) -> str:
 def _requirement(survey: Survey) -> str:
     """How many beams meet the information requirement, and what most often is unmet."""
     told = f"Information requirement met: {survey.meeting} of {_beams(len(survey.model.beams))}"
-    first = [f"{each.text} ({len(each.beams)})" for each in unmet_of(survey)[:MOST_UNMET]]
+    first = [f"{each.shown} ({len(each.beams)})" for each in unmet_of(survey)[:MOST_UNMET]]
     return told + (f"; unmet most often: {', '.join(first)}." if first else ".")
 
 

@@ -5,7 +5,7 @@ from __future__ import annotations
 import math
 import re
 from collections import Counter
-from collections.abc import Iterable, Mapping, Sequence
+from collections.abc import Collection, Iterable, Mapping, Sequence
 from dataclasses import dataclass
 
 from ifccheck.beam import Beam, Outline, Verdict
@@ -145,13 +145,35 @@ def head_of(text: str) -> str:
     return text.partition(":")[0]
 
 
+_NUMBERS = re.compile(r"\d+(?:\.\d+)?")
+
+
+def without_numbers(text: str) -> str:
+    """Return a text by which those are grouped that differ by their numbers alone.
+
+    >>> without_numbers("bars do not fit from 0 m to 1.50 m")
+    'bars do not fit from 0 m to 0 m'
+    """
+    return _NUMBERS.sub("0", text)
+
+
+def example_of(texts: Collection[str]) -> str:
+    """Return what stands for texts that differ by their numbers: the one, or an example.
+
+    >>> example_of(["cut over 3 mm"]), example_of(["cut over 3 mm", "cut over 12 mm"])
+    ('cut over 3 mm', 'e.g. cut over 3 mm')
+    """
+    first = next(iter(texts))
+    return f"e.g. {first}" if len(set(texts)) > 1 else first
+
+
 NAMED = 3
 """Members, or groups of them, that a reason names before the rest is counted."""
 
 
 @dataclass(frozen=True, slots=True)
 class ReasonGroup:
-    """Reasons that differ only by the members that they name."""
+    """Reasons that differ only by the members, or the numbers, that they name."""
 
     text: str
     cure: str
@@ -165,16 +187,18 @@ def reason_groups(ratings: Iterable[Rating]) -> list[ReasonGroup]:
     for rating in ratings:
         for reason in rating.reasons:
             head = head_of(reason.text)
-            group = head if head in CURES else reason.text
+            group = head if head in CURES else without_numbers(reason.text)
             found.setdefault(group, {}).setdefault(reason.text, []).append(rating.beam)
     groups = [_reason_group(group, texts) for group, texts in found.items()]
     return sorted(groups, key=lambda group: (-len(group.beams), group.text))
 
 
 def _reason_group(group: str, texts: Mapping[str, Sequence[str]]) -> ReasonGroup:
-    """Reasons of one group with the first few of the members that they name."""
+    """Reasons of one group: with the first few of the members that they name, or one for all."""
+    beams = tuple(dict.fromkeys(key for keys in texts.values() for key in keys))
+    if group not in CURES:
+        return ReasonGroup(example_of(texts), "", beams)
     named = [text.removeprefix(group).removeprefix(": ") for text in texts]
     more = [f"and {len(named) - NAMED} more"] if len(named) > NAMED else []
     told = "; ".join([*filter(None, named[:NAMED]), *more])
-    beams = tuple(dict.fromkeys(key for keys in texts.values() for key in keys))
-    return ReasonGroup(f"{group}: {told}" if told else group, CURES.get(group, ""), beams)
+    return ReasonGroup(f"{group}: {told}" if told else group, CURES[group], beams)

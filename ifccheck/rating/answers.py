@@ -14,6 +14,7 @@ from ifccheck.rating import verdict
 from ifccheck.rating.basis import bases_of
 from ifccheck.rating.batch import Batch, Envelope
 from ifccheck.rating.results import BasisItem, LimitStateRating, Rating, SafeLoad
+from ifccheck.rating.short_bars import short_bar_remarks
 from ifccheck.rating.subject import Subject, Unrated
 from ifccheck.rating.uplift import growing_uplift_remarks, uplift_remarks
 from ifccheck.standards import LimitState, Standard
@@ -44,7 +45,7 @@ def ratings_of(batch: Batch, standard: Standard, cases: Sequence[Case]) -> list[
         _Findings,
         states,
         governing,
-        _notes(batch),
+        _notes(batch, states),
         bases_of(batch, governing),
         reasons,
         _safe_loads(batch, standard, cases, [not each for each in reasons]),
@@ -129,9 +130,9 @@ def _no_word_of_stirrups(subject: Subject) -> str:
     ]
     if not others:
         return "no source says whether there are stirrups"
-    others = list(dict.fromkeys(_TELLING[each] for each in others))
+    telling = dict.fromkeys(_TELLING[each] for each in others)
     return (
-        f"{_SILENT[used]} whether there are stirrups, as {' and '.join(others)}: write them there"
+        f"{_SILENT[used]} whether there are stirrups, as {' and '.join(telling)}: write them there"
         ' (stirrups = "none" where there are none), or put the source that tells of them first in'
         " reinforcement.sources of the brief"
     )
@@ -205,10 +206,14 @@ def _safe_loads(
     return [tuple(safe for safe in own if safe is not None) for own in found]
 
 
-def _notes(batch: Batch) -> list[list[Remark]]:
-    """On each beam: supports that are lifted, and what the standard remarks of a stretch."""
+def _notes(batch: Batch, states: Sequence[Sequence[LimitStateRating]]) -> list[list[Remark]]:
+    """On each beam: bars that end short, supports that are lifted, and what the standard remarks
+    of a stretch."""
     keys = [subject.beam.key for subject in batch.subjects]
-    remarks: list[list[Remark]] = [[] for _ in keys]
+    remarks = [
+        list(short_bar_remarks(subject, of_beam))
+        for subject, of_beam in zip(batch.subjects, states, strict=True)
+    ]
     factors = {case: each.factor for case, each in batch.factors.items()}
     lifted = uplift_remarks(batch.uplift, keys, batch.places)
     for row, remark in (*lifted, *growing_uplift_remarks(batch.uplift, factors, keys)):

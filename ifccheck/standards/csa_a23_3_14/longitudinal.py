@@ -154,7 +154,9 @@ class LongitudinalDetails(ShearDetails):
     """Longitudinal tension with one face in flexural tension; arrays of one shape."""
 
     greatest_moment: Floats
-    """Greatest moment that tensions the side that governs [N*mm]"""
+    """Greatest moment that tensions the side that governs [N*mm]; inf where it bounds nothing"""
+    bounded: Bools
+    unbounded: Bools
     lever_arm: Floats
     """Lever arm for that moment [mm]"""
     tension_side: Bools
@@ -199,10 +201,13 @@ def _evaluate(section: Section, demand: Demand) -> tuple[LongitudinalDetails, Fl
     never, (peak, other_peak) = np.zeros(sides.force.shape, np.bool_), _peaks(web, demand)
     governs = never if sides.compressed is None else sides.compressed
     outside = never if sides.outside is None else sides.outside
+    greatest_moment = np.where(governs, other_peak, peak)
     known = replace(shear, stirrup_term=sides.stirrup_term)
     details = LongitudinalDetails(
         **{f.name: getattr(known, f.name) for f in fields(known)},
-        greatest_moment=np.where(governs, other_peak, peak),
+        greatest_moment=greatest_moment,
+        bounded=np.isfinite(greatest_moment),
+        unbounded=~np.isfinite(greatest_moment),
         lever_arm=np.where(governs, web.rest.other_lever_arm[web.rows()], web.lever_arm),
         tension_side=~governs & ~outside,
         compression_side=governs & ~outside,
@@ -310,7 +315,25 @@ def _in_fan(web: Web, demand: Demand, cot_theta: Floats) -> Bools:
 
 
 FORCE_LINES = (
-    given("M_max", "greatest moment that tensions this side", "greatest_moment", "N*mm"),
+    CalculationLine(
+        "M_max",
+        "greatest moment that tensions this side",
+        "",
+        "greatest_moment",
+        "N*mm",
+        "",
+        "bounded",
+    ),
+    CalculationLine(
+        "M_max",
+        "greatest moment, no bound here: another member frames into the side of the beam, so that"
+        " its load does not press on the compression face",
+        "",
+        "greatest_moment",
+        "N*mm",
+        "11.3.9.4",
+        "unbounded",
+    ),
     given("z", "lever arm of this side's steel, or dv", "lever_arm", "mm"),
     CalculationLine(
         "F",
