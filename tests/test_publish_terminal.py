@@ -235,7 +235,7 @@ def test_a_survey_tells_doubts_that_differ_by_their_numbers_once() -> None:
         for i, key in enumerate(keys[:4])
     }
     text = survey_said(survey_of(REPORT.model, findings))
-    assert re.search(r"4 +cut over 0 mm: measured on the line", text)
+    assert re.search(r"4 +e\.g\. cut over 0 mm: measured on the line", text)
     assert "bars #" not in text
     assert "Nothing missing: 35 of 35 beams (4 with doubts)." in text
 

@@ -100,7 +100,7 @@ class Report:
         used = {state.combination for rating in ratings for state in rating.limit_states}
         used |= {safe.combination for rating in ratings for safe in rating.safe_loads}
         return tuple(
-            tuple(label for label in _labels(each) if label in used and label != each.name)
+            tuple(label for label in _labels(each) if label in used - {each.name, ""})
             for each in self.combinations
         )
 
