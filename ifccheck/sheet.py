@@ -341,7 +341,7 @@ def _check(
 
 def _outcome(found: LimitStateRating) -> str:
     if math.isnan(found.utilisation):
-        return f"not rated: {found.why_not}"
+        return f"cannot be said: {found.why_not}"
     demand, resistance = (
         _result(value, found.demand_unit) for value in (found.demand, found.resistance)
     )

@@ -94,6 +94,24 @@ def test_every_combination_that_governs_can_be_traced(tmp_path: Path) -> None:
     assert "<bdi>1.25D + 1.5S; 1.25D + 1.5L</bdi>" in page.split('<section id="standard">')[1]
 
 
+def test_no_words_contradict_the_verdict(tmp_path: Path) -> None:
+    """Too few bars, of which no one says whether stirrups go with them: the beam falls short, and
+    its shear and its rated case cannot be said."""
+    beam = Beam(notation={"BottomBars": "2-15M", "TopBars": "2-15M"})
+    text = brief(LOAD.replace("10 kN", "90 kN"), LOAD.replace("floor", "press"))
+    found = answer(tmp_path, hall(beam), text)
+    assert found["beams"][0]["verdict"] == "falls short"
+    (case,) = found["rated_cases"]
+    assert case["text"].startswith("cannot be said: an input or a check is not settled of 1 beam")
+    arguments = ["sheet", str(tmp_path / "hall.ifc"), "B-1", "--brief"]
+    said = CliRunner().invoke(cli.main, [*arguments, str(tmp_path / "brief.toml")]).stdout
+    words = " ".join(said.split())
+    assert "falls short" in words
+    assert "not rated" not in words
+    assert "cannot be said: no source says whether there are stirrups: write them" in words
+    assert 'stirrups = "none"' in words
+
+
 def test_outputs_name_their_source_and_not_how_it_is_known() -> None:
     assert "from memory" not in RULE
     assert "Mansur and Tan" in RULE

@@ -40,6 +40,8 @@ SETTLED = {
     " schedule or the model that gives it",
     "hole in the body": "the modeller: model it as an opening (IfcOpeningElement) of the beam",
     "section is in separate parts": "the modeller: make the body one solid all along the beam",
+    "not straight": "a calculation by hand: only straight beams are rated",
+    "rolled by": "a calculation by hand: only bending about a level axis is rated",
     "its section runs out to nothing": "the modeller: correct the ends of the body",
     "its ends are cut so obliquely": "the modeller: correct the ends of the body",
     "material unknown": "the modeller: a material that is named as concrete",

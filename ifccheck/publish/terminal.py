@@ -56,8 +56,11 @@ def _doubts(report: Report, to: Terminal) -> Iterator[Text]:
         for rating in report.ratings.values()
     )
     if doubted:
-        beams = "1 beam has" if doubted == 1 else f"{doubted} beams have"
-        yield to.text(f"{beams} doubts of their own, on their sheets")
+        yield to.text(
+            "1 beam has doubts of its own, on its sheet"
+            if doubted == 1
+            else f"{doubted} beams have doubts of their own, on their sheets"
+        )
 
 
 def _counts_line(report: Report, to: Terminal) -> Text:

@@ -129,7 +129,10 @@ def _no_word_of_stirrups(subject: Subject) -> str:
         if each.source != used and each.speaks_of_stirrups
     ]
     if not others:
-        return "no source says whether there are stirrups"
+        return (
+            "no source says whether there are stirrups: write them where the bars are written"
+            ' (stirrups = "none" where there are none)'
+        )
     telling = dict.fromkeys(_TELLING[each] for each in others)
     return (
         f"{_SILENT[used]} whether there are stirrups, as {' and '.join(telling)}: write them there"
