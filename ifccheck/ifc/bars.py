@@ -25,6 +25,9 @@ FULL_HOOK_TAIL, FULL_HOOK_LEAST = 4.0, 60.0
 """Straight extension of a standard 180 degree hook: 4 diameters, at least 60 mm (the same)."""
 TAIL_TOLERANCE = 0.99
 """Part of a standard extension that passes for the whole: rounding of models."""
+WIDEST_HOOK = 8.0
+"""A hook stands beyond its run by no more than this many diameters: the bend of a standard one has a
+radius of 3.5 to 5.9 (CSA A23.1, from memory); round a wider one the bar leaves its height early."""
 LONGEST_CHORD = 6.0
 """A piece of a bend that is modelled by chords is no longer than this many diameters."""
 BEND_DIAMETERS, BEND_RADII = (26.0, 36.0), (3.6, 4.7, 5.9)
@@ -139,6 +142,7 @@ def _follow_end(
         straight, thick = pieces.straight[at], diameter[left]
         reach[left] = np.maximum(reach[left], far[at, 0] * sign[left])
         hook = straight & _is_hook(turn, tail[at], thick)
+        hook &= reach[left] - tip[left] <= WIDEST_HOOK * thick
         inclined = straight & (turn > SQUARE_TURN) & (pieces.length[at] > LONGEST_CHORD * thick)
         hooked[left] = hook
         bent[left] |= turn <= SQUARE_TURN

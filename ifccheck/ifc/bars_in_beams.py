@@ -68,7 +68,8 @@ def _kinds(lines: CentreLines, pieces: Pieces) -> tuple[Bools, Bools, Bools]:
     if not lines.count:
         nothing = np.zeros(0, dtype=bool)
         return nothing, nothing, nothing
-    legs = count_by_row(pieces.row, upright_legs(pieces, is_closed(lines, pieces)), lines.count)
+    upright = upright_legs(pieces, is_closed(lines, pieces), lines.diameter)
+    legs = count_by_row(pieces.row, upright, lines.count)
     between = lines.points[lines.first[:-1]] - lines.points[lines.first[1:] - 1]
     closed: Bools = sizes(between) <= HOOKED_MEETING * lines.diameter
     return closed, lies_square(lines), legs > 0

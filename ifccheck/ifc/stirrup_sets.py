@@ -22,6 +22,9 @@ UPRIGHT = math.cos(math.radians(20.0))
 MEETING, HOOKED_MEETING = 2.0, 8.0
 """A stirrup is closed where its ends, or the bends of its end hooks, are within this many
 diameters."""
+LEAST_HOOK = 5.9
+"""Diameters by which a bar goes on beyond a leg that a hook holds: 6 are the straight extension of a
+stirrup's hook alone (CSA A23.1, from memory), less what models round."""
 FULL_WINDING = 2.0 * math.pi * (1.0 - 1e-3)
 SAME_PLACE, SAME_PLACE_DIAMETERS = 5.0, 1.5
 """Stirrups are at one place along the beam within this [mm], or within this many diameters."""
@@ -78,7 +81,7 @@ def find_ties(
 ) -> tuple[Ties, Legs]:
     """Find the legs of bars that lie square; soffit and height of the section at each (R)."""
     closed = is_closed(lines, pieces)
-    upright = upright_legs(pieces, closed)
+    upright = upright_legs(pieces, closed, lines.diameter)
     low, high = lines.lowest(), lines.highest()
     middle = (low[:, 0] + high[:, 0]) / 2.0
     legs = find_legs(pieces, upright, middle, soffit, height)
@@ -97,10 +100,24 @@ def find_ties(
     return ties, legs
 
 
-def upright_legs(pieces: Pieces, closed: Bools) -> Bools:
-    """Whether each piece is upright and held at both ends: it goes on there (P)."""
-    held = closed[pieces.row] | ((pieces.neighbour(-1) >= 0) & (pieces.neighbour(1) >= 0))
-    return np.asarray(pieces.straight & (np.abs(pieces.direction[:, 2]) >= UPRIGHT) & held)
+def upright_legs(pieces: Pieces, closed: Bools, diameter: Floats) -> Bools:
+    """Whether each piece is upright and held at both ends: beyond the upright part, of which it may
+    be one of several pieces, the bar goes on for a hook (P); ``diameter`` of each bar."""
+    upright = np.abs(pieces.direction[:, 2]) >= UPRIGHT
+    before = pieces.neighbour(-1)
+    goes_on = (before >= 0) & upright & upright[before]
+    goes_on &= pieces.direction[:, 2] * pieces.direction[before, 2] > 0.0
+    part = np.cumsum(~goes_on) - 1
+    first = np.flatnonzero(~goes_on)
+    last = np.append(first[1:], len(part)) - 1
+    reached = np.cumsum(pieces.length)
+    begins, ends = np.flatnonzero(before < 0), np.flatnonzero(pieces.neighbour(1) < 0)
+    bar = np.cumsum(before < 0) - 1
+    to_start = (reached - pieces.length)[first] - (reached - pieces.length)[begins[bar[first]]]
+    to_end = reached[ends[bar[last]]] - reached[last]
+    hook = LEAST_HOOK * diameter[pieces.row[first]]
+    held = closed[pieces.row] | (np.minimum(to_start, to_end) >= hook)[part]
+    return np.asarray(pieces.straight & upright & held)
 
 
 def is_closed(lines: CentreLines, pieces: Pieces) -> Bools:
