@@ -2,10 +2,15 @@
 
 from __future__ import annotations
 
+from pathlib import Path
+
 import pytest
 
+from ifccheck import pipeline
 from ifccheck.beam import Anchor
+from ifccheck.rating.results import Rating
 from tests.barred_beams import Curve, Found, ModelWithBars, bent, straight
+from tests.step_halls import LOAD, NOTATION, Beam, brief, hall, write
 
 BOTTOM = tuple(straight(40.0, 5960.0, y, 60.0) for y in (-90.0, 0.0, 90.0))
 
@@ -70,3 +75,80 @@ def test_a_bar_that_turns_off_in_a_wide_bend_ends_where_the_bend_begins(
     (bars,) = model.read(beam).bars
     assert bars.end_anchor is end
     assert bars.end == pytest.approx(5908.0 if end is Anchor.HOOK else 5600.0)
+
+
+# What the source that is taken does not say ------------------------------------------------------
+
+SCHEDULE = '[reinforcement]\nschedule = "s.csv"\n'
+ROW = "B-1,2-20M,3-25M,2 legs 10M @ 200"
+
+
+def scheduled(folder: Path, table: str, **of_model: str) -> Rating:
+    """A beam by a schedule, of which the model's own set says something too."""
+    folder.mkdir()
+    (folder / "s.csv").write_text(table, encoding="utf-8")
+    beam = Beam(notation={**NOTATION, **of_model})
+    write(folder, hall(beam), brief(LOAD) + SCHEDULE)
+    run = pipeline.rate([folder / "hall.ifc"], folder / "brief.toml")
+    (rating,) = run.reports[0].ratings.values()
+    return rating
+
+
+def resistances(rating: Rating) -> dict[str, float]:
+    return {state.name: state.resistance for state in rating.limit_states}
+
+
+@pytest.mark.parametrize(
+    ("column", "said", "stated"),
+    [
+        ("bar_yield", "BarYield", "300 MPa"),
+        ("stirrup_yield", "StirrupYield", "300 MPa"),
+        ("cover", "Cover", "75 mm"),
+    ],
+)
+def test_no_default_is_better_than_what_another_source_states(
+    column: str, said: str, stated: str, tmp_path: Path
+) -> None:
+    head = "mark,top,bottom,stirrups"
+    silent = scheduled(tmp_path / "silent", f"{head}\n{ROW}\n", **{said: stated})
+    spoken = scheduled(tmp_path / "spoken", f"{head},{column}\n{ROW},{stated}\n")
+    by_default = scheduled(tmp_path / "default", f"{head}\n{ROW}\n")
+    assert resistances(silent) == pytest.approx(resistances(spoken), rel=1e-9, nan_ok=True)
+    less, more = resistances(silent), resistances(by_default)
+    assert any(less[name] < 0.97 * more[name] for name in more)
+
+
+def test_a_yield_strength_that_another_source_denies_is_told(tmp_path: Path) -> None:
+    table = f"mark,top,bottom,stirrups,bar_yield\n{ROW},500 MPa\n"
+    rating = scheduled(tmp_path / "hall", table, BarYield="400 MPa")
+    assert (
+        "schedule used; properties differs: yield strength of the bars 400 MPa against 500 MPa"
+        in [remark.text for remark in rating.remarks if remark.kind == "doubt"]
+    )
+
+
+# Properties that deny one another ----------------------------------------------------------------
+
+
+@pytest.mark.parametrize(
+    ("noted", "diameter", "spacing", "denied"),
+    [
+        ("2 legs 10M @ 100", None, "300", True),
+        ("2 legs 15M @ 200", "10M", None, True),
+        ("none", "10M", "200", True),
+        ("2 legs 10M @ 200", "10M", "200", False),
+    ],
+)
+def test_stirrups_that_two_properties_give_otherwise_are_a_reason(
+    noted: str, diameter: str | None, spacing: str | None, denied: bool
+) -> None:
+    model = ModelWithBars()
+    beam = model.beam()
+    model.properties(beam, "BeamRating_Reinforcement", {"BottomBars": "3-25M", "Stirrups": noted})
+    own = {"Size": diameter, "Pitch": spacing}
+    model.properties(beam, "Office", {name: text for name, text in own.items() if text})
+    mapping = {"stirrup_diameter": "Office.Size", "stirrup_spacing": "Office.Pitch"}
+    found = model.read(beam, mapping)
+    assert ("properties differ on the stirrups" in found.reasons) == denied
+    (zone,) = found.source("properties").zones
+    assert (zone.stirrups is None) == denied

@@ -9,6 +9,13 @@ from typing import NamedTuple
 from ifccheck.beam import Bars, Beam, Face, Given, Reinforcement, Remark, Stirrups
 from ifccheck.brief.statements import MaterialStatement
 from ifccheck.detailing import Layout, choose_source, lay_out
+from ifccheck.subjects.elsewhere import (
+    Stated,
+    differing_yields,
+    greatest_cover,
+    least_yield,
+    stated_elsewhere,
+)
 from ifccheck.subjects.findings import NO_MATERIAL, Findings, Sources
 
 _LAYOUT_AGGREGATE = 20.0
@@ -34,19 +41,40 @@ def steel_of(beam: Beam, sources: Sources, findings: Findings) -> Steel | None:
     findings.reasons += chosen.reasons
     if chosen.reinforcement is None:
         return None
-    placed = _placed(beam, chosen.reinforcement, sources, stated, findings)
-    defaults = sources.defaults
+    taken, defaults = chosen.reinforcement, sources.defaults
+    placed = _placed(beam, taken, sources, stated, findings)
+    bar_yield = _fallback(beam, taken, "bar_yield", stated.bar_yield, defaults.bar_yield, findings)
+    stirrup_yield = _fallback(
+        beam, taken, "stirrup_yield", stated.stirrup_yield, defaults.stirrup_yield, findings
+    )
     return Steel(
         bars=placed.bars,
         stirrups=placed.stirrups,
         stirrups_known=placed.stirrups_known,
-        source=chosen.reinforcement.source,
-        bar_yield=_yields(placed.bars, stated.bar_yield, defaults.bar_yield, "bars", findings),
+        source=taken.source,
+        bar_yield=_yields(placed.bars, stated.bar_yield, bar_yield, "bars", findings),
         stirrup_yield=_yields(
-            placed.stirrups, stated.stirrup_yield, defaults.stirrup_yield, "stirrups", findings
+            placed.stirrups, stated.stirrup_yield, stirrup_yield, "stirrups", findings
         ),
         silent=placed.silent,
     )
+
+
+def _fallback(
+    beam: Beam,
+    taken: Reinforcement,
+    what: Stated,
+    stated: Given | None,
+    default: Given | None,
+    findings: Findings,
+) -> Given | None:
+    """Yield strength of the steel of which the source that is taken states none; tells where other
+    sources state another one, unless the brief states it for the beam."""
+    if stated is None and len(beam.reinforcement) > 1:
+        for text in differing_yields(beam, taken, what):
+            findings.remarks.append(Remark(beam.key, "reinforcement", text, "doubt"))
+        return least_yield(default, stated_elsewhere(beam, taken, what))
+    return default
 
 
 def _placed(
@@ -68,7 +96,9 @@ def _placed(
         reinforcement.zones,
         clear_spacing=lambda diameter: sources.standard.clear_spacing(diameter, size),
         stated_cover=stated.cover,
-        fallback_cover=beam.cover or sources.defaults.cover,
+        fallback_cover=greatest_cover(
+            beam.cover or sources.defaults.cover, stated_elsewhere(beam, reinforcement, "cover")
+        ),
     )
     findings.remarks += laid.remarks
     findings.reasons += laid.reasons
