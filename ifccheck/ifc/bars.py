@@ -26,8 +26,8 @@ FULL_HOOK_TAIL, FULL_HOOK_LEAST = 4.0, 60.0
 TAIL_TOLERANCE = 0.99
 """Part of a standard extension that passes for the whole: rounding of models."""
 WIDEST_HOOK = 8.0
-"""A hook stands beyond its run by no more than this many diameters: the bend of a standard one has a
-radius of 3.5 to 5.9 (CSA A23.1, from memory); round a wider one the bar leaves its height early."""
+"""A hook stands beyond its run by no more than this many diameters: the bend of a standard one has
+a radius of 3.5 to 5.9 (CSA A23.1, from memory), and round a wider one a bar leaves its height."""
 LONGEST_CHORD = 6.0
 """A piece of a bend that is modelled by chords is no longer than this many diameters."""
 BEND_DIAMETERS, BEND_RADII = (26.0, 36.0), (3.6, 4.7, 5.9)

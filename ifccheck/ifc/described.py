@@ -45,6 +45,8 @@ LIMITS: Mapping[str, tuple[float, float]] = {
     "stirrup_legs": (1.0, 24.0),
 }
 """Least and greatest credible value [mm], [MPa]."""
+SAME = 0.05
+"""Relative difference within which two properties state the same size or spacing."""
 ADDED_UP = frozenset({"top", "bottom", "side"})
 """Fields of which a list gives bars that lie there together."""
 REFUSED: Mapping[Form, str] = {
@@ -176,6 +178,9 @@ def _stirrup_group(found: Mapping[str, Found], reasons: list[Reason]) -> Stirrup
     legs = _get(found, "stirrup_legs")
     if "stirrups" in found:
         group: StirrupGroup | None = found["stirrups"].value
+        if denied := _denied(found, group):
+            reasons.append(Reason(f"properties differ on the stirrups: {denied}"))
+            return None
         if group is None or legs is None or group.legs == legs:
             return group
         if group.legs is None:
@@ -190,6 +195,21 @@ def _stirrup_group(found: Mapping[str, Found], reasons: list[Reason]) -> Stirrup
         reasons.append(Reason(f"properties give stirrups without their {missing}"))
         return None
     return StirrupGroup(size.designation, size.diameter, size.area, spacing, legs)
+
+
+def _denied(found: Mapping[str, Found], group: StirrupGroup | None) -> str:
+    """What a diameter or a spacing says against the notation of the stirrups; empty for nothing."""
+    parts = {"stirrup_diameter": "diameter", "stirrup_spacing": "spacing"}
+    for name, attribute in parts.items():
+        stated = found.get(name)
+        if stated is None:
+            continue
+        value = getattr(stated.value, "diameter", stated.value)
+        noted = 0.0 if group is None else getattr(group, attribute)
+        if abs(value - noted) > SAME * value:
+            each = (found["stirrups"], stated)
+            return " against ".join(f"{one.source} {one.text}" for one in each)
+    return ""
 
 
 def _bar_groups(value: PropertyValue, units: ModelUnits) -> tuple[BarGroup, ...]:

@@ -23,8 +23,8 @@ MEETING, HOOKED_MEETING = 2.0, 8.0
 """A stirrup is closed where its ends, or the bends of its end hooks, are within this many
 diameters."""
 LEAST_HOOK = 5.9
-"""Diameters by which a bar goes on beyond a leg that a hook holds: 6 are the straight extension of a
-stirrup's hook alone (CSA A23.1, from memory), less what models round."""
+"""Diameters by which a bar goes on beyond a leg that a hook holds: 6 are the straight extension of
+a stirrup's hook alone (CSA A23.1, from memory), less what models round."""
 FULL_WINDING = 2.0 * math.pi * (1.0 - 1e-3)
 SAME_PLACE, SAME_PLACE_DIAMETERS = 5.0, 1.5
 """Stirrups are at one place along the beam within this [mm], or within this many diameters."""
