@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
 from pathlib import Path
 
 import pytest
@@ -10,6 +11,7 @@ from ifccheck import pipeline
 from ifccheck.beam import Anchor
 from ifccheck.rating.results import Rating
 from tests.barred_beams import Curve, Found, ModelWithBars, bent, straight
+from tests.section_definitions import Piece, Writer
 from tests.step_halls import LOAD, NOTATION, Beam, brief, hall, write
 
 BOTTOM = tuple(straight(40.0, 5960.0, y, 60.0) for y in (-90.0, 0.0, 90.0))
@@ -152,3 +154,41 @@ def test_stirrups_that_two_properties_give_otherwise_are_a_reason(
     assert ("properties differ on the stirrups" in found.reasons) == denied
     (zone,) = found.source("properties").zones
     assert (zone.stirrups is None) == denied
+
+
+# Section definitions that give the same bars twice ------------------------------------------------
+
+ROW_AT_SOFFIT = Piece(depth=536.1)
+ROW_AT_TOP = Piece(depth=61.05, count=2, diameter=19.5, area=600.0)
+
+
+@pytest.mark.parametrize(
+    ("twin", "name", "why"),
+    [
+        (ROW_AT_SOFFIT, "Bottom", ""),
+        (replace(ROW_AT_SOFFIT, depth=536.1 + 1e-6), None, ""),
+        (replace(ROW_AT_SOFFIT, end=6000.0 + 1e-6), None, ""),
+        (replace(ROW_AT_SOFFIT, grade="500W"), None, "differ in number or grade"),
+        (replace(ROW_AT_SOFFIT, count=4, area=2000.0), "Bottom", "differ in number or grade"),
+    ],
+)
+def test_a_row_of_a_section_that_is_given_again_counts_once(
+    twin: Piece, name: str | None, why: str
+) -> None:
+    model = ModelWithBars()
+    beam = model.beam()
+    Writer(model.file).give([beam], ROW_AT_SOFFIT, ROW_AT_TOP)
+    Writer(model.file).give([beam], twin, name=name)
+    found = model.read(beam)
+    rows = [row for zone in found.source("sections").zones for row in zone.rows]
+    assert [(row.face, row.group.count) for row in rows] == [("bottom", 3), ("top", 2)]
+    assert why in found.reasons if why else "counted once" in found.remarks
+
+
+def test_top_and_bottom_bars_of_one_effective_depth_are_no_repeat() -> None:
+    model = ModelWithBars()
+    beam = model.beam()
+    for name in ("Bottom", "Top"):
+        Writer(model.file).give([beam], ROW_AT_SOFFIT, name=name)
+    (zone,) = model.read(beam).source("sections").zones
+    assert [row.face for row in zone.rows] == ["bottom", "top"]

@@ -9,7 +9,7 @@ from ifccheck.beam import BarRow, DescribedZone, Reason, Reinforcement, Remark, 
 from ifccheck.ifc.bar_findings import STAGE
 from ifccheck.ifc.context import BeamFrame, Context
 from ifccheck.ifc.entity import UnreadableError, label
-from ifccheck.ifc.section_places import Extent, Lying, extents, levels, lie, offset_of
+from ifccheck.ifc.section_places import SAME_PLACE, Extent, Lying, extents, levels, lie, offset_of
 from ifccheck.ifc.section_rows import Row, RowReader, Stated
 from ifccheck.notation import show_bars
 
@@ -111,12 +111,40 @@ def _zones(
     beside = [levels(row, extent, frame) for row, extent in zip(rows, reach, strict=True)]
     lying = lie(rows, beside)
     together: dict[Extent, list[BarRow]] = {}
-    for row, extent, at in zip(rows, reach, lying, strict=True):
+    known: list[_Placed] = []
+    for placed in zip(rows, reach, lying, strict=True):
+        if any(_repeats(placed, other, findings) for other in known):
+            continue
+        known.append(placed)
+        row, extent, at = placed
         together.setdefault(extent, []).append(_bar_row(row, at))
         _tell(row, at, findings)
     for extent, held in together.items():
         origins = ", ".join(dict.fromkeys(row.origin for row in held))
         yield DescribedZone(*extent, rows=tuple(held), origin=origins)
+
+
+_Placed = tuple[Row, Extent, Lying]
+
+
+def _repeats(placed: _Placed, other: _Placed, findings: _Findings) -> bool:
+    """Whether a row gives bars of one size where another row gives them, too: the same bars twice,
+    or two statements of them of which nobody can tell which holds."""
+    (row, extent, at), (known, reach, lying) = placed, other
+    near = [*zip(extent, reach, strict=True), (at.z, lying.z), (row.transverse, known.transverse)]
+    group, first = row.bars.group, known.bars.group
+    if any(abs(a - b) > SAME_PLACE for a, b in near) or group.designation != first.designation:
+        return False
+    if (group.count, row.bars.yield_strength) == (first.count, known.bars.yield_strength):
+        findings.remark(f"{row.name} repeats {known.name}: counted once")
+    else:
+        findings.reasons.append(
+            Reason(
+                f"{row.name} and {known.name} give {group.designation} bars at one height from and"
+                " to the same places, and differ in number or grade: give all of them in one row"
+            )
+        )
+    return True
 
 
 def _bar_row(row: Row, at: Lying) -> BarRow:
