@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from dataclasses import replace
 from pathlib import Path
 
@@ -9,6 +10,7 @@ import pytest
 
 from ifccheck import pipeline
 from ifccheck.beam import Anchor
+from ifccheck.ifc.bar_sizes import yield_of_grade
 from ifccheck.rating.results import Rating
 from tests.barred_beams import Curve, Found, ModelWithBars, bent, straight
 from tests.section_definitions import Piece, Writer
@@ -192,3 +194,70 @@ def test_top_and_bottom_bars_of_one_effective_depth_are_no_repeat() -> None:
         Writer(model.file).give([beam], ROW_AT_SOFFIT, name=name)
     (zone,) = model.read(beam).source("sections").zones
     assert [row.face for row in zone.rows] == ["bottom", "top"]
+
+
+# Bars that are weaker, or hold less, than steel of the default -----------------------------------
+
+
+def of_material(name: str, **properties: str) -> Found:
+    model = ModelWithBars()
+    beam = model.beam()
+    bars = model.bars(beam, *BOTTOM, diameter=25.2)
+    stuff = model.file.create_entity("IfcMaterial", name)
+    model.root("IfcRelAssociatesMaterial", RelatedObjects=bars, RelatingMaterial=stuff)
+    for bar in bars if properties else ():
+        model.properties(bar, "Office", properties)
+    return model.read(beam)
+
+
+@pytest.mark.parametrize(
+    ("material", "why"),
+    [
+        ("GFRP", "not of steel"),
+        ("Glass fibre rod", "not of steel"),
+        ("Rebar CFRP 1000 MPa", "not of steel"),
+        ("Epoxy coated 400W", "coated with epoxy"),
+        ("HPB300", "plain surface"),
+        ("SR235", "plain surface"),
+    ],
+)
+def test_bars_that_no_formula_covers_are_a_reason(material: str, why: str) -> None:
+    found = of_material(material)
+    assert why in found.reasons
+    assert found.bars == ()
+
+
+@pytest.mark.parametrize("material", ["A240", "Q 235", "AT400C"])
+def test_a_material_named_like_a_grade_leaves_no_room_for_a_default(material: str) -> None:
+    """Where the yield strength is nan no default fills it."""
+    (bars,) = of_material(material).bars
+    assert bars.yield_strength is not None
+    assert math.isnan(bars.yield_strength.value)
+
+
+@pytest.mark.parametrize("material", ["Steel", "Rebar", "Stahl 1", "Material 12", "Concrete C30"])
+def test_other_names_of_materials_do(material: str) -> None:
+    (bars,) = of_material(material).bars
+    assert bars.yield_strength is None
+
+
+@pytest.mark.parametrize("name", ["fy", "fyk", "Fy"])
+def test_a_yield_strength_by_its_symbol_is_read(name: str) -> None:
+    (bars,) = of_material("Steel", **{name: "250 MPa"}).bars
+    assert bars.yield_strength is not None
+    assert bars.yield_strength.value == 250.0
+
+
+@pytest.mark.parametrize(
+    ("text", "strength"),
+    [
+        ("UTS 550 MPa", None),
+        ("fu = 550 MPa", None),
+        ("tensile strength: 620 N/mm2", None),
+        ("fy 500 MPa, fu 540 MPa", 500.0),
+        ("fu 450 MPa, fy 500 MPa", 500.0),
+        ("500 MPa", 500.0),
+    ],
+)
+def test_a_tensile_strength_is_no_yield_strength(text: str, strength: float | None) -> None:
+    assert yield_of_grade(text) == strength

@@ -107,8 +107,8 @@ class BarReaders:
         data = self.data.of(product, product.id(), name, swept, said)
         if data.size < 0:
             raise UnreadableError("is of a diameter that nobody states")
-        if data.is_plain:
-            raise UnreadableError("has a plain surface: the bond of plain bars is not covered")
+        if data.not_covered:
+            raise UnreadableError(data.not_covered)
         return data
 
 

@@ -9,6 +9,7 @@ from typing import Any
 
 import numpy as np
 
+from ifccheck.ifc.bar_bond import not_covered
 from ifccheck.ifc.bar_paths import Ints
 from ifccheck.ifc.bar_sizes import (
     BarSize,
@@ -68,8 +69,8 @@ class Data:
     """Index into ``BarData.sizes``; -1 where nobody tells."""
     grade: int
     """Index into ``BarData.grades``."""
-    is_plain: bool
-    """Its surface is plain, by the bar or else by its type."""
+    not_covered: str
+    """Why nothing here covers its bond or its stuff; empty where it is covered."""
 
 
 NO_HINTS, NO_TYPE = _Hints(), _Type()
@@ -156,11 +157,13 @@ class BarData:
         own_role = role if role and role != "NOTDEFINED" else about.role
         size = self._size(diameter, area, about, swept, name, hints)
         steel = self._material(material, step_id)
+        said_of_steel = [text for _, text in (*hints.yields.texts, *steel.texts)]
+        said_of_it = (grade, object_type, about.name, *said_of_steel)
         return Data(
             own_role,
             size,
             self._grade(grade, steel, hints, about.name, object_type),
-            (surface or about.surface) == "PLAIN",
+            not_covered(surface or about.surface, [text for text in said_of_it if text]),
         )
 
     def _named(self, name: str) -> str:

@@ -211,6 +211,11 @@ _GRADES = (
     (re.compile(r"(?<![0-9.])([0-9]{2,3})\s*ksi", re.IGNORECASE), KSI),
 )
 """Families of grades: R and W of CSA G30.18, MPa in the name, and ASTM grades in ksi."""
+_TENSILE = re.compile(
+    r"(?:UTS|(?<![A-Za-z])(?:Rm|f_?[ut]k?)|tensile(?:\s+strength)?|ultimate(?:\s+\w+)?)\W{0,4}$",
+    re.IGNORECASE,
+)
+"""Words before a number that is the tensile strength, not that at which the steel yields"""
 
 
 def yield_of_grade(text: str) -> float | None:
@@ -227,7 +232,8 @@ def yield_of_grade(text: str) -> float | None:
         int(found[1]) * factor
         for pattern, factor in _GRADES
         for found in pattern.finditer(text)
-        if factor == 1.0 or int(found[1]) in _PSI_GRADES
+        if (factor == 1.0 or int(found[1]) in _PSI_GRADES)
+        and not _TENSILE.search(text[: found.start()])
     ]
     plain = re.fullmatch(r"\s*([2-9][0-9]{2})\s*", text)
     if plain:
@@ -236,9 +242,17 @@ def yield_of_grade(text: str) -> float | None:
     return min(readings) if readings else None
 
 
+_ALONE = re.compile(r"\s*[^\W\d_]{1,3}[\s-]?[2-6][0-9]{2}[^\W\d_]{0,2}\s*")
+
+
 def _is_grade(source: str, text: str) -> bool:
-    """Whether a text that is not understood must name a grade, as A240 does and STEEL does not."""
-    return source not in ("material", "name") and re.search(r"\d{2}", text) is not None
+    """Whether a text that is not understood must name a grade, as A240 does and STEEL does not.
+
+    The name of a material must only where it is nothing but letters and such a number.
+    """
+    if source in ("material", "name"):
+        return source == "material" and _ALONE.fullmatch(text) is not None
+    return re.search(r"\d{2}", text) is not None
 
 
 @dataclass(frozen=True, slots=True)

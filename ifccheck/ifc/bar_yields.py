@@ -10,7 +10,9 @@ from ifccheck.ifc.bar_sizes import GREATEST_YIELD, LEAST_YIELD
 from ifccheck.ifc.properties import PropertyValue, Sets
 
 GRADE_PROPERTIES = frozenset({"grade", "steelgrade", "steel grade", "structuralgrade"})
-YIELD_PROPERTIES = frozenset({"yieldstress", "yield stress", "yieldstrength", "yield strength"})
+YIELD_PROPERTIES = frozenset(
+    {"yieldstress", "yield stress", "yieldstrength", "yield strength", "fy", "f_y", "fyk", "f_yk"}
+)
 """Names of properties, in lower case, that tell the grade and the yield strength of a bar."""
 Texts = tuple[tuple[str, str], ...]
 """Texts, each with the place that it was found in."""

@@ -7,6 +7,7 @@ from collections.abc import Iterator
 from dataclasses import dataclass
 
 from ifccheck.beam import BarGroup
+from ifccheck.ifc.bar_bond import not_covered
 from ifccheck.ifc.bar_data import area_of_bar
 from ifccheck.ifc.bar_sizes import (
     AGREEMENT,
@@ -62,9 +63,10 @@ def read_bars(entity: Entity, units: ModelUnits) -> SectionBars:
             f"neither diameter nor area ({_shown(diameter, 'mm')}, {_shown(each, 'mm2')} for each"
             f" of {count} bars) is that of a bar"
         )
-    if get(entity, "BarSurface") == "PLAIN":
-        raise UnreadableError("bars of plain surface: their bond is not covered")
-    grade = settle_grade([("grade", text(entity, "SteelGrade"))])
+    named = text(entity, "SteelGrade")
+    if uncovered := not_covered(str(get(entity, "BarSurface") or ""), [named]):
+        raise UnreadableError(uncovered)
+    grade = settle_grade([("grade", named)])
     doubts = [taken_as(size), *_of_area(total), grade.doubt]
     return SectionBars(
         BarGroup(count, size.designation, size.diameter, size.area),
