@@ -164,6 +164,8 @@ def test_bars_that_meet_both_end_where_no_coupler_is() -> None:
         ("IfcMechanicalFastener", {"PredefinedType": "BOLT"}, False),
         ("IfcFastener", {"PredefinedType": "GLUE"}, False),
         ("IfcBuildingElementProxy", {"Name": "Coupler 25M"}, True),
+        ("IfcMechanicalFastener", {"Name": "Bolt M20"}, False),
+        ("IfcMechanicalFastener", {"ObjectType": "Anchor bolts"}, False),
         ("IfcBuildingElementProxy", {"Name": "Box"}, False),
         ("IfcDiscreteAccessory", {"ObjectType": "Schraubmuffe"}, True),
     ],

@@ -261,3 +261,16 @@ def test_a_yield_strength_by_its_symbol_is_read(name: str) -> None:
 )
 def test_a_tensile_strength_is_no_yield_strength(text: str, strength: float | None) -> None:
     assert yield_of_grade(text) == strength
+
+
+# Bars of the beam that lie in another one ---------------------------------------------------------
+
+
+def test_bars_of_a_beam_that_lie_beyond_its_end_are_told() -> None:
+    model = ModelWithBars()
+    beam = model.beam()
+    model.bars(beam, *BOTTOM, diameter=25.2)
+    model.bars(beam, straight(6500.0, 12000.0, 0.0, 60.0), diameter=25.2)
+    found = model.read(beam)
+    (told,) = [r.text for r in found.source("bars").remarks if "lies beyond the end" in r.text]
+    assert told.startswith("bar #")

@@ -20,6 +20,11 @@ BY_CLASS = ("IfcMechanicalFastener", "IfcFastener")
 BY_NAME = ("IfcDiscreteAccessory", "IfcBuildingElementProxy")
 """Couplers where their name says so"""
 NAMED = re.compile(r"coupl|koppl|muffe|manchon|mechanical.?splice", re.IGNORECASE)
+OTHER = re.compile(
+    r"bolt|anchor|anker|screw|schraube|nail|dowel|stud|rivet|weld|washer|bracket|plate|clip",
+    re.IGNORECASE,
+)
+"""Names of fasteners that hold no bars together"""
 UNTOLD = (None, "NOTDEFINED", "USERDEFINED", "COUPLER")
 NEAR = 5.0
 """A joint may lie outside the box of its coupler by this [mm]."""
@@ -63,6 +68,8 @@ class Couplers:
 
 def _is_coupler(product: Entity, by_class: bool) -> bool:
     texts = (get(product, "Name"), get(product, "ObjectType"), get(product, "Description"))
-    if NAMED.search(" ".join(text for text in texts if isinstance(text, str))):
+    said = " ".join(text for text in texts if isinstance(text, str))
+    if NAMED.search(said):
         return True
-    return by_class and get(product, "PredefinedType") in UNTOLD
+    untold = get(product, "PredefinedType") in UNTOLD
+    return by_class and untold and OTHER.search(said) is None

@@ -34,6 +34,7 @@ SKEWED = 0.966
 END_TOLERANCE = 5.0
 """A stirrup may lie beyond the end of its beam by this [mm]."""
 OUTSIDE = "lies outside the concrete of the beam"
+BEYOND = "lies beyond the end of the beam, not counted"
 BENT_UP = "inclined parts are not counted, neither along the beam nor in shear"
 MAIN_ROLES, TIE_ROLES = frozenset({"MAIN", "EDGE"}), frozenset({"LIGATURE", "RING"})
 
@@ -108,6 +109,7 @@ def _along(model: Measured) -> dict[int, tuple[Bars, ...]]:
     _judge_others(model, is_main, leaning)
     _judge_roles(model, is_main, TIE_ROLES, "a stirrup by its role, but runs along the beam")
     model.reason(np.flatnonzero(_run_outside(model, runs)), OUTSIDE)
+    model.remark(np.flatnonzero(is_main & ~_reaching(model, runs)), BEYOND)
     judge_data(model, is_main)
     return longitudinal_bars(model, runs)
 
@@ -137,7 +139,7 @@ def _judge_legs(model: Measured, ties: Ties) -> Bools:
     length = model.places.frames.length[model.rows.beam]
     beyond = (ties.x < -END_TOLERANCE) | (ties.x > length + END_TOLERANCE)
     counted = (ties.legs[:, 1] > 0) & ~beyond
-    model.remark(np.flatnonzero(beyond), "lies beyond the end of the beam, not counted")
+    model.remark(np.flatnonzero(beyond), BEYOND)
     flat = ~beyond & ~counted
     model.remark(np.flatnonzero(flat), "no leg crosses the height, not counted in shear")
     _judge_roles(model, counted, MAIN_ROLES, "a main bar by its role, but lies square to the beam")
@@ -189,6 +191,14 @@ def _within_concrete(model: Measured, runs: Runs) -> Runs:
     model.remark(unhooked, "its hook leaves the concrete of the beam: taken as a straight end")
     model.reason(left, OUTSIDE)
     return runs
+
+
+def _reaching(model: Measured, runs: Runs) -> Bools:
+    """Whether each bar runs along its beam anywhere between the beam's ends."""
+    length = model.places.frames.length[model.rows.beam[runs.row]]
+    reaching = np.zeros(model.lines.count, dtype=bool)
+    reaching[runs.row[(runs.end > 0.0) & (runs.start < length)]] = True
+    return reaching
 
 
 def _run_outside(model: Measured, runs: Runs) -> Bools:
