@@ -196,6 +196,22 @@ def test_top_and_bottom_bars_of_one_effective_depth_are_no_repeat() -> None:
     assert [row.face for row in zone.rows] == ["bottom", "top"]
 
 
+@pytest.mark.parametrize(
+    ("end", "start", "why"),
+    [(3050.0, 2950.0, "reach into"), (3000.0, 3000.0, ""), (6000.0, 2000.0, "")],
+)
+def test_rows_of_sections_that_overlap_in_part_are_a_reason(
+    end: float, start: float, why: str
+) -> None:
+    """A lap of 100 mm would be laid out as bars that go on."""
+    model = ModelWithBars()
+    beam = model.beam()
+    pieces = replace(ROW_AT_SOFFIT, end=end), replace(ROW_AT_SOFFIT, start=start)
+    Writer(model.file).give([beam], *pieces, ROW_AT_TOP)
+    found = model.read(beam)
+    assert why in found.reasons if why else found.reasons == ""
+
+
 # Bars that are weaker, or hold less, than steel of the default -----------------------------------
 
 

@@ -12,6 +12,7 @@ from ifccheck.ifc.entity import UnreadableError, label
 from ifccheck.ifc.section_places import SAME_PLACE, Extent, Lying, extents, levels, lie, offset_of
 from ifccheck.ifc.section_rows import Row, RowReader, Stated
 from ifccheck.notation import show_bars
+from ifccheck.units import show
 
 SECTIONS = "IfcReinforcementDefinitionProperties"
 
@@ -115,6 +116,7 @@ def _zones(
     for placed in zip(rows, reach, lying, strict=True):
         if any(_repeats(placed, other, findings) for other in known):
             continue
+        findings.reasons += [reason for other in known for reason in _laps(placed, other)]
         known.append(placed)
         row, extent, at = placed
         together.setdefault(extent, []).append(_bar_row(row, at))
@@ -145,6 +147,22 @@ def _repeats(placed: _Placed, other: _Placed, findings: _Findings) -> bool:
             )
         )
     return True
+
+
+def _laps(placed: _Placed, other: _Placed) -> Iterator[Reason]:
+    """Bars that reach into others of their size at their height: laid out they would go on in them,
+    however short the lap is."""
+    (row, extent, at), (known, reach, lying) = placed, other
+    start, end = max(extent.start, reach.start), min(extent.end, reach.end)
+    differ = [a - b for a, b in zip(extent, reach, strict=True)]
+    staggered = min(differ) > SAME_PLACE or max(differ) < -SAME_PLACE
+    alike = row.bars.group.designation == known.bars.group.designation
+    if alike and abs(at.z - lying.z) <= SAME_PLACE and staggered and end - start > SAME_PLACE:
+        yield Reason(
+            f"{row.name} reach into {known.name}, of the same size at the same height, from"
+            f" {show(start, 'length')} to {show(end, 'length')}: whether they lap there or go on"
+            " is not told"
+        )
 
 
 def _bar_row(row: Row, at: Lying) -> BarRow:
