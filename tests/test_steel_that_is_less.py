@@ -243,6 +243,14 @@ def test_bars_that_no_formula_covers_are_a_reason(material: str, why: str) -> No
     assert found.bars == ()
 
 
+@pytest.mark.parametrize("attributes", [{"Name": "GFRP #5"}, {"ObjectType": "15M epoxy"}])
+def test_names_of_bars_tell_so_too(attributes: dict[str, str]) -> None:
+    model = ModelWithBars()
+    beam = model.beam()
+    model.bars(beam, *BOTTOM, diameter=16.0, **attributes)
+    assert "not covered" in model.read(beam).reasons
+
+
 @pytest.mark.parametrize("material", ["A240", "Q 235", "AT400C"])
 def test_a_material_named_like_a_grade_leaves_no_room_for_a_default(material: str) -> None:
     """Where the yield strength is nan no default fills it."""

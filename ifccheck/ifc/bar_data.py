@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterable, Mapping, Sequence
 from dataclasses import dataclass
 from itertools import repeat
-from typing import Any
+from typing import Any, NamedTuple
 
 import numpy as np
 
@@ -59,6 +59,13 @@ class _Type:
     surface: str = ""
 
 
+class Named(NamedTuple):
+    """What the name of a bar tells: its size, and why nothing here covers it."""
+
+    size: str
+    not_covered: str
+
+
 @dataclass(frozen=True, slots=True)
 class Data:
     """What is settled of a bar."""
@@ -110,7 +117,7 @@ class BarData:
         if product.is_a() == "IfcReinforcingBar":
             said, surface = (argument(8), argument(9), argument(10), argument(12)), argument(13)
         related = self.related(step_id)
-        key = (said, surface, argument(4), self.size_in(name), *related, swept)
+        key = (said, surface, argument(4), self.said_in(name), *related, swept)
         data = self._settled.get(key)
         if data is None:
             data = self._settled[key] = self._settle(step_id, *key)
@@ -134,9 +141,10 @@ class BarData:
             held[row] = numbers.setdefault(tuple(relations.sets[ids[row]]), len(numbers) + 1)
         return _looked_up(relations.types, ids), _looked_up(relations.materials, ids), held
 
-    def size_in(self, name: str) -> str:
-        """The bar size in the name of a bar."""
-        return self._named(name) if "M" in name or "#" in name else ""
+    def said_in(self, name: str) -> Named:
+        """The bar size in the name of a bar, and why it is not covered."""
+        size = self._named(name) if "M" in name or "#" in name else ""
+        return Named(size, not_covered("", (name,)) if "FRP" in name or "poxy" in name else "")
 
     def _settle(
         self,
@@ -144,7 +152,7 @@ class BarData:
         said: Said,
         surface: str | None,
         object_type: str | None,
-        named: str,
+        named: Named,
         type_id: int | None,
         material: int | None,
         sets: tuple[int, ...] | None,
@@ -153,7 +161,7 @@ class BarData:
         grade, diameter, area, role = said
         about = self._type(type_id)
         hints = self._hints_of(step_id, sets or ())
-        name = named or self._named(object_type or "") or self._named(about.name)
+        name = named.size or self._named(object_type or "") or self._named(about.name)
         own_role = role if role and role != "NOTDEFINED" else about.role
         size = self._size(diameter, area, about, swept, name, hints)
         steel = self._material(material, step_id)
@@ -163,7 +171,8 @@ class BarData:
             own_role,
             size,
             self._grade(grade, steel, hints, about.name, object_type),
-            not_covered(surface or about.surface, [text for text in said_of_it if text]),
+            named.not_covered
+            or not_covered(surface or about.surface, [text for text in said_of_it if text]),
         )
 
     def _named(self, name: str) -> str:

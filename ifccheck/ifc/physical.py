@@ -35,6 +35,7 @@ END_TOLERANCE = 5.0
 """A stirrup may lie beyond the end of its beam by this [mm]."""
 OUTSIDE = "lies outside the concrete of the beam"
 BEYOND = "lies beyond the end of the beam, not counted"
+NO_LEG = "no leg crosses the height that a hook or a bend holds at both ends: not counted in shear"
 BENT_UP = "inclined parts are not counted, neither along the beam nor in shear"
 MAIN_ROLES, TIE_ROLES = frozenset({"MAIN", "EDGE"}), frozenset({"LIGATURE", "RING"})
 
@@ -141,7 +142,7 @@ def _judge_legs(model: Measured, ties: Ties) -> Bools:
     counted = (ties.legs[:, 1] > 0) & ~beyond
     model.remark(np.flatnonzero(beyond), BEYOND)
     flat = ~beyond & ~counted
-    model.remark(np.flatnonzero(flat), "no leg crosses the height, not counted in shear")
+    model.remark(np.flatnonzero(flat), NO_LEG)
     _judge_roles(model, counted, MAIN_ROLES, "a main bar by its role, but lies square to the beam")
     return np.asarray(counted)
 

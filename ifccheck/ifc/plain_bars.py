@@ -23,7 +23,7 @@ from ifccheck.ifc.bar_columns import (
     thinnest,
     what_is_wrong,
 )
-from ifccheck.ifc.bar_data import Data
+from ifccheck.ifc.bar_data import Data, Named
 from ifccheck.ifc.bar_paths import Bools, Floats, Ints
 from ifccheck.ifc.bar_samples import offsets, others, spread
 from ifccheck.ifc.bar_shapes import Strand
@@ -183,9 +183,9 @@ def _read_data(
     names: Shared[str],
     shapes: _Shapes,
 ) -> Shared[Data]:
-    sizes: dict[str, int] = {}
+    sizes: dict[Named, int] = {}
     size_of = [
-        sizes.setdefault(readers.data.size_in(name or ""), len(sizes)) for name in names.values
+        sizes.setdefault(readers.data.said_in(name or ""), len(sizes)) for name in names.values
     ]
     thickness = shapes.thickness[shapes.number]
     said = [column.first_of_each()[1] for column in texts.data]
