@@ -30,7 +30,17 @@ from tests.barred_beams import ModelWithBars, bent, closed_stirrup, straight
 
 HEAD = "ISO-10303-21;HEADER;FILE_SCHEMA(('IFC4'));ENDSEC;DATA;"
 FOOT = "ENDSEC;END-ISO-10303-21;"
-PLAIN_NAMES = ("bottom 20M", "L1", "", "a (b); c", "it is #7", "trailing ", "\u00d8 16", "\\x\\")
+PLAIN_NAMES = (
+    "bottom 20M",
+    "GFRP #5",
+    "L1",
+    "",
+    "a (b); c",
+    "it is #7",
+    "trailing ",
+    "\u00d8 16",
+    "\\x\\",
+)
 NAMES = (*PLAIN_NAMES, "it's", "a, b", ",", "it's, so", "'", "),#1,")
 
 
