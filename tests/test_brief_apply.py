@@ -510,7 +510,7 @@ def test_an_eccentric_load_asks_for_torsion(load):
 
 
 def test_nothing_stated_is_nothing_claimed():
-    assert BeamStatement() == BeamStatement(None, False, False, False, None, ())
+    assert BeamStatement() == BeamStatement(None, False, False, False, None, "", ())
 
 
 def test_materials_are_merged_and_know_their_source(load):
