@@ -64,6 +64,7 @@ def test_reactions_are_unfactored_and_carry_all_the_load() -> None:
 @settings(deadline=None, max_examples=25)
 @example(0.0, 2.2250738585e-313, 300.0, ("pinned", "pinned"))
 @example(-3.0, 2.2250738585e-313, 300.0, ("pinned", "pinned"))
+@example(0.0, -2.225073858507e-311, 300.0, ("pinned", "pinned"))
 @example(3.0, 1e-308, 300.0, ("fixed", "pinned"))
 @given(
     st.floats(-20.0, 25.0), st.floats(-200e3, 250e3), st.floats(300.0, 5700.0),

@@ -60,7 +60,8 @@ def uplift_of(effects: Effects, spans: SpanTable, rated: Mapping[str, int]) -> U
         own -= np.multiply.outer(effects.lesser[:, k], pressing[k])
         holds = own - (up - down)
         grows = (own > 0.0) & (holds > 0.0)
-        factor = np.where(grows, holds / np.where(grows, own, 1.0), np.inf).min(axis=0)
+        with np.errstate(over="ignore"):  # of next to no uplift it takes infinitely much
+            factor = np.where(grows, holds / np.where(grows, own, 1.0), np.inf).min(axis=0)
         beyond[name] = np.where(pinned, factor, np.inf)
     return Uplift(np.where(pinned, net.max(axis=0), 0.0), net.argmax(axis=0), beyond)
 
