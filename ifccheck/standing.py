@@ -53,3 +53,12 @@ class Contact(NamedTuple):
     """Whether it is near enough, and of a kind, to hold a beam; else it may only load it"""
     doubt: str = ""
     """Why it cannot be counted on to hold an end; empty where it can"""
+
+    @property
+    def other_name(self) -> str:
+        """What people call the other member."""
+        return self.other.rpartition(" (")[0]
+
+    def goes_by(self, name: str) -> bool:
+        """Whether the other member has this name, with its class or without."""
+        return name in (self.other, self.other_name)

@@ -208,6 +208,20 @@ def test_an_ell_with_a_level_flange_is_rated_and_told(tmp_path: Path) -> None:
     assert "held from turning" not in texts(rated(tmp_path, tee(300, 600, 1200, 150)))
 
 
+def test_a_top_out_of_level_has_no_web_and_gives_no_number(tmp_path: Path) -> None:
+    """In sagging the compression face is a line at the upper corner: bw = 0 there."""
+    sloped = ((-150, 0), (150, 0), (150, 600), (-150, 610))
+    rating = rated(tmp_path, sloped)
+    assert rating.verdict is Verdict.NOT_RATED, rating.utilisation
+    assert "the outline is narrower than 10 mm: it has no web" in texts(rating)
+    assert not any(state.utilisation > 1.0 for state in rating.limit_states)
+
+
+def test_a_rectangle_on_its_corner_is_not_rated(tmp_path: Path) -> None:
+    rating = rated(tmp_path, turned(rectangle(420, 420), 45.0))
+    assert rating.verdict is Verdict.NOT_RATED, rating.utilisation
+
+
 # How a slip is read ------------------------------------------------------------------------------
 
 

@@ -55,14 +55,20 @@ def _states_something(path: Path, table: schema.SelectingTable, keys: tuple[str,
 def support_entry(index: int, table: schema.SupportTable) -> SupportEntry:
     """An entry of ``[[supports]]``."""
     path: Path = ("supports", index)
-    _states_something(path, table, ("start", "end", "bearing"))
+    _states_something(path, table, ("start", "end", "bearing", "ignore"))
     if table.start and table.end and (reason := cannot_stand(table.start, table.end)):
         raise FaultError(path, f"{reason}: one end must be fixed, or neither free")
     for kind, width in zip((table.start, table.end), table.bearing or (0.0, 0.0), strict=True):
         if kind == "free" and width > 0.0:
             raise FaultError((*path, "bearing"), "gives a free end a bearing: write 0 mm for it")
+    if any(not mark.strip() for mark in table.ignore or ()):
+        raise FaultError((*path, "ignore"), "holds an empty mark")
     return SupportEntry(
-        **head(path, table), start=table.start, end=table.end, bearing=table.bearing
+        **head(path, table),
+        start=table.start,
+        end=table.end,
+        bearing=table.bearing,
+        ignore=None if table.ignore is None else tuple(table.ignore),
     )
 
 

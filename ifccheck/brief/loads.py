@@ -132,7 +132,7 @@ def _anchored_at_end(
     brief: Brief, entry: LoadEntry, beam: Beam, contacts: Sequence[Contact]
 ) -> bool:
     """Whether the member that places are measured from is at the end of the beam."""
-    ends = {c.place for c in contacts if c.place != "between" and _is(c, entry.anchor or "")}
+    ends = {c.place for c in contacts if c.place != "between" and c.goes_by(entry.anchor or "")}
     if len(ends) != 1:
         found = "both ends" if ends else "neither end"
         raise BriefError(
@@ -140,8 +140,3 @@ def _anchored_at_end(
             f" {beam.mark}: name a member that touches one end"
         )
     return ends == {"end"}
-
-
-def _is(contact: Contact, name: str) -> bool:
-    """Whether the contact's member, told as "name (class)", has this name."""
-    return name in (contact.other, contact.other.rpartition(" (")[0])

@@ -123,6 +123,8 @@ class SupportEntry:
     start: SupportKind | None
     end: SupportKind | None
     bearing: tuple[float, float] | None
+    ignore: tuple[str, ...] | None = None
+    """Members under the beam between its ends that do not hold it"""
 
 
 @dataclass(frozen=True, slots=True)

@@ -223,6 +223,7 @@ class SupportTable(SelectingTable):
         ]
         | None
     ) = None
+    ignore: list[Name] | None = Field(default=None, min_length=1)
 
 
 class BeamTable(SelectingTable):

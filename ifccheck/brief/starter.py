@@ -263,7 +263,9 @@ def _supports(models: Sequence[StarterModel], names: _Names) -> Iterator[str]:
     yield from _prose(
         "Ends that touch nothing which can be counted on to hold them, and beams that something"
         " touches from below between their ends: say how each end stands (pinned, fixed or free)."
-        " The start is the end that plan and sheets mark."
+        " The start is the end that plan and sheets mark. What touches a beam from below and does"
+        " not hold it is named in such an entry, too, by ignore = and a list of marks; what holds"
+        " it makes it no single span, and it is not rated."
     )
     for i, (ends, beams) in enumerate(groups.items()):
         yield from [""] if i else []

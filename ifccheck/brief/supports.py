@@ -10,7 +10,7 @@ from ifccheck.beam import Beam, Contact, Reason, Remark, Support, SupportKind
 from ifccheck.brief.merging import Matches, Said, merge
 from ifccheck.brief.model import Brief, SupportEntry
 from ifccheck.errors import BriefError
-from ifccheck.units import show
+from ifccheck.units import clipped, show
 
 End = Literal["start", "end"]
 Supports = tuple[Support, Support]
@@ -47,15 +47,19 @@ def resolve_supports(
     """Return the supports of every beam, or why they are unknown, and the remarks.
 
     The brief's default holds at an end that sits on another member, or meets its face, where
-    nothing speaks against that member. Any other end needs its own entry; both ends do where
-    something touches the beam from below between them. Raises BriefError for a beam that cannot
-    stand.
+    nothing speaks against that member. Any other end needs its own entry. What touches the beam
+    from below between its ends makes it no single span, whatever is said of the ends, until an
+    entry says by name that it does not hold the beam. Raises BriefError for a beam that cannot
+    stand, and for such a name that touches nothing.
     """
+    ignored = ignored_contacts(brief, matches, contacts)
     stated, overruled = merge(brief.supports, matches, _say)
     supports: dict[str, Supports | Reason] = {}
     remarks: list[Remark] = []
     for key, beam in beams.items():
         said, touching = stated.get(key, {}), contacts.get(key, ())
+        if key in ignored:
+            touching = [contact for contact in touching if contact not in ignored[key]]
         supports[key] = _supports(brief, beam, said, touching)
         remarks += (*overruled.get(key, ()), *_remarks(key, supports[key], said))
     return supports, tuple(remarks)
@@ -70,12 +74,57 @@ def stated_ends(brief: Brief, matches: Matches) -> dict[str, dict[End, SupportKi
     }
 
 
+def ignored_contacts(
+    brief: Brief, matches: Matches, contacts: Mapping[str, Sequence[Contact]]
+) -> dict[str, tuple[Contact, ...]]:
+    """Return the contacts under each beam, between its ends, that the brief says do not hold it.
+
+    Raises BriefError for a name that touches none of the beams which its entry reaches.
+    """
+    entries = [entry for entry in brief.supports if entry.ignore and matches[entry.place]]
+    for entry in entries:
+        below = [c for key in matches[entry.place] for c in between_below(contacts.get(key, ()))]
+        for mark in entry.ignore or ():
+            if not entry.optional and not any(contact.goes_by(mark) for contact in below):
+                raise BriefError(
+                    f"{brief.where(entry, 'ignore')}: {clipped(mark, 120)} touches no beam of"
+                    " this entry from below between its ends: correct it, or write optional = true"
+                )
+    if not entries:
+        return {}
+    stated, _ = merge(entries, matches, _say)
+    found = {
+        key: tuple(
+            contact
+            for contact in between_below(contacts.get(key, ()))
+            if any(contact.goes_by(mark) for mark in said["ignore"].value)
+        )
+        for key, said in stated.items()
+    }
+    return {key: each for key, each in found.items() if each}
+
+
+def between_below(contacts: Sequence[Contact]) -> list[Contact]:
+    """Return what touches a beam from below between its ends, near enough to hold it."""
+    return [c for c in contacts if c.place == "between" and c.side == "below" and c.bears]
+
+
+def told_ignored(contacts: Sequence[Contact]) -> tuple[str, ...]:
+    """Return the statement on each contact that does not hold a beam, for people."""
+    return tuple(
+        f"ignore: {contact.other}, under it at {show(contact.start, 'length')}, does not hold it"
+        for contact in contacts
+    )
+
+
 def _say(entry: SupportEntry) -> dict[str, Said]:
     said = {
         end: Said(kind, kind, entry.place)
         for end, kind in (("start", entry.start), ("end", entry.end))
         if kind is not None
     }
+    if entry.ignore is not None:
+        said["ignore"] = Said(entry.ignore, ", ".join(entry.ignore), entry.place)
     for end, width in zip(("start", "end"), entry.bearing or (), strict=False):
         said[f"{end}_bearing"] = Said(width, show(width, "dimension"), entry.place)
     return said
@@ -84,8 +133,7 @@ def _say(entry: SupportEntry) -> dict[str, Said]:
 def _supports(
     brief: Brief, beam: Beam, said: Mapping[str, Said], contacts: Sequence[Contact]
 ) -> Supports | Reason:
-    below = [c for c in contacts if c.place == "between" and c.side == "below" and c.bears]
-    if below and not ("start" in said and "end" in said):
+    if below := between_below(contacts):
         return _touched_between(below[0])
     start = _end(brief, "start", said, contacts)
     end = _end(brief, "end", said, contacts)
@@ -116,7 +164,8 @@ def _check(
 def _touched_between(contact: Contact) -> Reason:
     return Reason(
         f"supports unknown: {contact.other} touches it from below between its ends, at"
-        f" {show(contact.start, 'length')}; state both ends under [[supports]]"
+        f" {show(contact.start, 'length')}; if it does not hold the beam, write ignore ="
+        f' ["{contact.other_name}"] under [[supports]]'
     )
 
 

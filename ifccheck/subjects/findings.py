@@ -67,6 +67,8 @@ class Sources:
     """By the brief [N/mm3]"""
     crane_cases: Set[str]
     permanent_cases: Set[str]
+    ignored: Mapping[str, Sequence[Contact]]
+    """Under a beam between its ends, stated not to hold it"""
     stances: Mapping[str, Sequence[Stance]]
     """Of sections of which there is something to say"""
     upward: Mapping[str, bool]

@@ -25,7 +25,12 @@ from ifccheck.brief.statements import (
     span_reason,
     statements,
 )
-from ifccheck.brief.supports import resolve_supports, stated_ends
+from ifccheck.brief.supports import (
+    ignored_contacts,
+    resolve_supports,
+    stated_ends,
+    told_ignored,
+)
 from ifccheck.frame.carrying import contacts_of, pressed_ends
 from ifccheck.frame.flanges import NO_MEETING, Slabs
 from ifccheck.frame.openings import Net, net_of
@@ -82,6 +87,7 @@ def gather(model: Model, brief: Brief, matches: Matches, standard: Standard) -> 
         unit_weight=Given(brief.basis.concrete_unit_weight, "brief, basis.concrete_unit_weight"),
         crane_cases={case.name for case in brief.cases if case.nature == "crane"},
         stances=stances(model.beams),
+        ignored=ignored_contacts(brief, matches, contacts),
         upward={entry.place: entry.upward for entry in brief.loads if entry.acts_upward},
         permanent_cases={case.name for case in brief.cases if case.nature == "permanent"},
     )
@@ -122,7 +128,7 @@ def _one(
 ) -> Subject | Unrated:
     findings = Findings(beam.key, list(beam.reasons), list(beam.remarks))
     statement = sources.statements.get(beam.key, NO_STATEMENT)
-    stated = (*_stated(statement), *_stated_upward(sources, loads))
+    stated = _stated(beam.key, sources, statement, loads)
     contacts = sources.contacts.get(beam.key, ())
     findings.remarks += [*sources.support_remarks.get(beam.key, ()), *statement.remarks]
     findings.remarks += [
@@ -233,15 +239,19 @@ def _distinct(reasons: Sequence[Reason]) -> tuple[Reason, ...]:
     return tuple({reason.text: reason for reason in reasons}.values())
 
 
-def _stated(statement: BeamStatement) -> tuple[str, ...]:
+def _stated(
+    key: str, sources: Sources, statement: BeamStatement, loads: Sequence[Load]
+) -> tuple[str, ...]:
     """What the engineer stated that overrules a doubt: it must be seen."""
     found = []
     if statement.unloaded:
         found.append("unloaded = true: self weight alone is meant")
     if statement.loads_complete:
         found.append("loads_complete = true: what rests on the beam is in the loads given")
-    if statement.slab_bars_from:
-        found.append('slab_bars = "anchored": bars of slabs in its flange are anchored')
+    if key in sources.ignored:
+        found += told_ignored(sources.ignored[key])
+    if sources.upward:
+        found += _stated_upward(sources, loads)
     return tuple(found)
 
 

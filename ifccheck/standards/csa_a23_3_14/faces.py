@@ -31,6 +31,10 @@ from ifccheck.mechanics.width_profile import (
 )
 from ifccheck.standards.csa_a23_3_14 import flange, materials
 
+LEAST_WEB = 10.0
+"""An outline that is narrower than this somewhere within the effective depth, as at a tip or along
+a face that is a little out of level, has no web that resists shear [mm]"""
+
 
 class _Dataclass(Protocol):
     """Any dataclass"""
@@ -80,7 +84,8 @@ class FaceState:
     """dv, the greater of 0.9 d and 0.72 h [mm]; 0.72 h where there is no tension steel; less what
     openings take away"""
     web_width: Floats
-    """bw, the least width between the compression face and the depth d [mm]"""
+    """bw, the least width between the compression face and the depth d [mm]; nan where that is
+    less than LEAST_WEB"""
     tension_area: Floats
     """As, flexural tension steel, developed [mm2]"""
     tension_area_full: Floats
@@ -274,6 +279,7 @@ def _face(
     full, developed, d = steel.full, steel.developed, steel.effective_depth
     tension_yield = np.where(full > 0.0, bars.yield_strength, 0.0).max(axis=1, initial=0.0)
     bw = least_width(strips, np.zeros_like(h), np.where(np.isnan(d), h, d))
+    bw = np.where(bw < LEAST_WEB, np.nan, bw)
     s = _strength(section, strips, layer_depth, steel.side)
     tension_area = developed.sum(axis=1)
     beyond_ductility: Bools = np.greater(s.neutral_axis_depth, ductility_limit(tension_yield) * d)

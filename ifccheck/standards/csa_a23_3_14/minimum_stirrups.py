@@ -98,7 +98,7 @@ def _quick(stations: _Stations, demand: Demand) -> tuple[tuple[Floats, Floats], 
 def _details(prepared: Prepared) -> MinimumStirrupDetails:
     none = prepared.stirrup_area == 0.0
     steel_yield = np.where(none, GREATEST_YIELD, prepared.stirrup_yield)
-    width = np.maximum(prepared.sagging.web_width, prepared.hogging.web_width)
+    width = np.fmax(prepared.sagging.web_width, prepared.hogging.web_width)
     required = minimum_stirrup_area(
         concrete_strength=prepared.concrete_strength,
         web_width=width,

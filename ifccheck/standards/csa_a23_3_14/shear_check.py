@@ -18,6 +18,7 @@ from ifccheck.standards.csa_a23_3_14.cracked import (
     crack,
     has_steel,
 )
+from ifccheck.standards.csa_a23_3_14.faces import LEAST_WEB
 from ifccheck.standards.csa_a23_3_14.sections import Prepared
 from ifccheck.standards.csa_a23_3_14.shear_lines import SHEAR_LINES
 from ifccheck.standards.csa_a23_3_14.stirrups import greatest_stirrup_spacing
@@ -351,14 +352,21 @@ def _evaluate(section: Section, demand: Demand) -> tuple[ShearDetails, Floats]:
     return details, utilisation
 
 
+def _without_web(details: ShearDetails, checked: Bools) -> Outside:
+    """Where an outline runs out to nothing between the compression face and the steel."""
+    text = f"within the depth the outline is narrower than {LEAST_WEB:.0f} mm: it has no web"
+    return Outside("2.3", text, np.isnan(details.web_width) & ~details.disturbed & checked)
+
+
 def check(prepared: Prepared, demand: Demand) -> Check:
     """Check shear by 11.3.6.3 or 11.3.6.4 at every station and arrangement."""
     details, utilisation = worse_face(sections(prepared), demand, _evaluate)
+    checked = (details.shear != 0.0) & prepared.inside
     return Check(
         demand=details.shear,
         resistance=details.resistance,
         utilisation=utilisation,
-        outside=outside_of(details, (details.shear != 0.0) & prepared.inside),
+        outside=(*outside_of(details, checked), _without_web(details, checked)),
         details=details,
     )
 
