@@ -137,6 +137,8 @@ class Sheet:
     bar_yield: tuple[Given, ...] = ()
     """The yield strength that each entry of ``bars`` was rated with, where it was rated"""
     stirrup_yield: tuple[Given, ...] = ()
+    faces: tuple[float, float] | None = None
+    """x of the faces of its supports [mm]"""
 
 
 @dataclass(frozen=True, slots=True)
@@ -262,6 +264,7 @@ def sheet_maker(
             beam=subject.beam,
             rating=rating,
             span=subject.span,
+            faces=subject.faces,
             loads=(*_self_weight(arisen, subject, row), *subject.loads),
             bars=subject.bars,
             stirrups=subject.stirrups,

@@ -106,10 +106,14 @@ def rated(
     return Rated(path, folder / "out", run, data)
 
 
+PASSED_OVER = {"06": '[[supports]]\nbeams = ["LANDKAR"]\nignore = ["LAGER"]\n'}
+"""An abutment's bearings, which the bridge lies on"""
+
+
 def generous_brief(folder: Path, name: str) -> Path:
     bars, stirrups = BARS.get(name, ("2-15M", "2 legs 10M @ 100"))
     (folder / "schedule.csv").write_text(SCHEDULE.format(bars=bars, stirrups=stirrups))
-    (folder / "brief.toml").write_text(GENEROUS)
+    (folder / "brief.toml").write_text(GENEROUS + PASSED_OVER.get(name[:2], ""))
     return folder / "brief.toml"
 
 

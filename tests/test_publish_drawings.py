@@ -470,3 +470,18 @@ def test_bars_along_a_taper_are_named_once() -> None:
     svg = elevation(replace(sheet, bars=pieces))
     assert len(of_class(svg, "bar")) == 1
     assert len(of_class(svg, "bar-name")) == 1
+
+
+def test_a_bearing_is_drawn_to_the_face_that_is_calculated_with() -> None:
+    """A bearing of 400 mm where no member is modelled lies from the beam's end inward, however
+    far out the span begins; one of 300 mm before the end's face lies beyond it."""
+    sheet = varying_sheet(Run(0.0, 6000.0, at(0, 800)))
+    pinned = [Support("pinned", width, "test") for width in (400.0, 300.0)]
+    span = Span(0.0, 6150.0, *pinned)
+    svg = elevation(replace(sheet, span=span, faces=(400.0, 6000.0)))
+    along = SPAN_OF_STRIP / 6000.0
+    first, last = (
+        [x for x, _ in numbers(each.get("d") or "")] for each in of_class(svg, "bearing")
+    )
+    assert sorted(first) == pytest.approx([LEFT, LEFT + 400.0 * along], abs=0.15)
+    assert min(last) == pytest.approx(LEFT + 6000.0 * along, abs=0.15)

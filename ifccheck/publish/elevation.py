@@ -100,6 +100,10 @@ class Drawable(Protocol):
         """None where nothing tells how it stands."""
 
     @property
+    def faces(self) -> tuple[float, float] | None:
+        """x of the faces of its supports [mm]; None where nothing tells them."""
+
+    @property
     def loads(self) -> tuple[Load, ...]:
         """What acts on it."""
 
@@ -139,7 +143,7 @@ def elevation(sheet: Drawable) -> str:
         *(_stirrup_set(stirrups, frame, foot) for stirrups in sheet.stirrups),
         *(drawn_opening(opening, sheet.beam, frame) for opening in sheet.beam.openings),
         *(_bar_row(i, row, frame) for i, row in enumerate(bars_in_a_row(sheet.bars))),
-        _supports(sheet.span, runs, frame),
+        _supports(sheet.span, sheet.faces, runs, frame),
         _span_line(sheet.span, length, frame, foot + 58.0),
     ]
     height = foot + 72.0
@@ -243,24 +247,34 @@ def _stirrup_set(stirrups: Stirrups, frame: Frame, foot: float) -> str:
     return path(lines, "stirrup") + path(ends, "measure") + label((x0 + x1) / 2, y + 11, words, "m")
 
 
-def _supports(span: Span | None, runs: Sequence[Run], frame: Frame) -> str:
+def _supports(
+    span: Span | None, faces: tuple[float, float] | None, runs: Sequence[Run], frame: Frame
+) -> str:
     if span is None:
         return ""
     ends = ((span.start, span.start_support, -1.0), (span.end, span.end_support, 1.0))
-    return "".join(_support(x, support, side, runs, frame) for x, support, side in ends)
+    near, far = (support.bearing / 2.0 for _, support, _ in ends)
+    faces = faces or (span.start + near, span.end - far)
+    return "".join(
+        _support(x, support, side, face, runs, frame)
+        for (x, support, side), face in zip(ends, faces, strict=True)
+    )
 
 
-def _support(place: float, support: Support, side: float, runs: Sequence[Run], frame: Frame) -> str:
-    """A support under the soffit that the beam has there, or a wall that holds its end."""
+def _support(
+    place: float, support: Support, side: float, face: float, runs: Sequence[Run], frame: Frame
+) -> str:
+    """A support under the soffit that the beam has there, or a wall that holds its end; its
+    bearing ends at the face from which the beam is checked."""
     x, soffit = frame.x(place), min(z for _, z in outline_of(runs, place).rings[0])
     y = frame.z(soffit)
-    half = support.bearing / 2.0 * frame.along
     if support.kind == "free":
         return ""
     if support.kind == "pinned":
-        half = max(half, 3.0)
+        ends = frame.x(face), frame.x(face + side * support.bearing)
+        x0, x1 = (x - 3.0, x + 3.0) if abs(ends[1] - ends[0]) < 6.0 else (min(ends), max(ends))
         triangle = closed_path([(x, y), (x - 6, y + 11), (x + 6, y + 11)])
-        return path(triangle, "support") + path(segment(x - half, y, x + half, y), "bearing")
+        return path(triangle, "support") + path(segment(x0, y, x1, y), "bearing")
     edge = x + side * 7.0
     top, foot = frame.top - 6.0, y + 6.0
     wall = closed_path([(x, top), (edge, top), (edge, foot), (x, foot)])

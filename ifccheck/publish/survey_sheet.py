@@ -29,6 +29,7 @@ class ReadSheet:
     section: Outline | None
     section_x: float
     span: Span | None = None
+    faces: tuple[float, float] | None = None
     loads: tuple[Load, ...] = ()
 
 
