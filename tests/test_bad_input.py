@@ -668,7 +668,7 @@ def command(folder: Path, *arguments: str) -> subprocess.CompletedProcess[str]:
             1,
             "cannot be written",
         ),
-        (["rate", "hall.ifc", "--brief", "hall.ifc", "--out", "out"], 2, "not TOML"),
+        (["rate", "hall.ifc", "--brief", "hall.ifc", "--out", "out"], 2, "is a model, not a brief"),
         (["rate", "brief.toml", "--brief", "brief.toml", "--out", "out"], 1, "is no .ifc"),
         (["rate", "hall.ifc", "--brief", "brief.toml"], 2, "--out"),
     ],
