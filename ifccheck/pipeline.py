@@ -20,7 +20,6 @@ from ifccheck.brief.selecting import (
     Found,
     check_mapping,
     check_reached,
-    check_rows_reached,
     check_scope,
     join,
     mapping_remarks,
@@ -109,7 +108,6 @@ def rate(models: Sequence[Path], brief_path: Path, say: Say = lambda _: None) ->
     reads = read_models(models, plan.brief, say)
     found = tuple(find_beams(read, plan) for read in reads)
     check_reached(plan.brief, found)
-    check_rows_reached(plan.brief, plan.schedule, found)
     check_mapping(plan.brief, [read.model.mapped for read in reads], _properties_of(reads))
     rated = tuple(
         rate_model(read, join(plan.brief, plan.schedule, of_model), plan, found, say)

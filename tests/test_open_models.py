@@ -35,7 +35,6 @@ supports = ["pinned", "pinned"]
 
 [reinforcement]
 sources = ["bars", "properties", "schedule"]
-optional = true
 schedule = "schedule.csv"
 
 [cases.floor]

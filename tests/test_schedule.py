@@ -114,15 +114,14 @@ def test_a_cell_that_holds_an_error_is_told(tmp_path):
 
 def test_numbers_of_a_workbook_are_read_as_they_are_shown(tmp_path):
     book = openpyxl.Workbook()
-    book.active.append(["mark", "from", "to", "bottom", "optional"])
-    book.active.append([204.0, 0.07, 0.5, "3-25M", True])
+    book.active.append(["mark", "from", "to", "bottom"])
+    book.active.append([204.0, 0.07, 0.5, "3-25M"])
     book.active["B2"].number_format = book.active["C2"].number_format = "0 %"
     book.save(tmp_path / "beams.xlsx")
     (row,) = read_schedule(tmp_path / "beams.xlsx")
     assert row.selection.beams == ("204",)
     assert (row.start.value, row.start.relative, row.start.text) == (0.07, True, "7 %")
     assert row.end.on(6000.0) == 3000.0
-    assert row.optional
 
 
 def test_a_number_without_a_unit_is_refused_in_a_workbook_too(write):
@@ -237,8 +236,7 @@ FAULTS = [
     ([["mark", "stirrups"], ["B-1", "10M @ 12,5"]], "row 2 stirrups: '10M @ 12,5'"),
     ([["mark", "top", "from"], ["B-1", "none", "1,5 m"]], "row 2 from: '1,5 m' has a comma"),
     ([["mark", "top", "from"], ["B-1", "none", "12,5 %"]], "row 2 from: '12,5 %' has a comma"),
-    ([["mark", "bottom", "optional"], ["B-1", "3-25M", "x"]], "row 2 optional: 'x' is neither"),
-    ([["mark", "from", "optional"], ["B-1", "1 m", "yes"]], "row 2: states nothing"),
+    ([["mark", "from"], ["B-1", "1 m"]], "row 2: states nothing"),
     (
         [["mark", "top", "from", "to"], ["B-1", "none", "3 m", "2 m"]],
         "row 2 to: '2 m' is not beyond from = '3 m'",

@@ -30,7 +30,7 @@ def to_brief(table: schema.BriefTable, path: Path, source: Source) -> Brief:
         defaults=_defaults(table.defaults),
         sources=_sources(table.reinforcement),
         schedule=_schedule(table.reinforcement, path),
-        reinforcement_optional=_optional(table.reinforcement),
+        mapping_optional=_optional(table.reinforcement),
         property_mapping=_mapping(table.reinforcement.properties),
         lines={shown(key): line for key, line in source.lines.items()},
         cases=cases,
@@ -137,10 +137,10 @@ def _schedule(table: schema.ReinforcementTable, path: Path) -> Path | None:
 
 
 def _optional(table: schema.ReinforcementTable) -> bool:
-    if table.optional and table.schedule is None and not table.properties.model_fields_set:
+    if table.optional and not table.properties.model_fields_set:
         raise FaultError(
             ("reinforcement", "optional"),
-            "is for the rows of a schedule and for a mapping of properties, and none is given",
+            "is for a mapping of properties, and none is given",
         )
     return table.optional
 

@@ -224,7 +224,7 @@ class Brief:
     defaults: Defaults
     sources: tuple[SourceName, ...]
     schedule: Path | None
-    reinforcement_optional: bool
+    mapping_optional: bool
     """True where rows of the schedule may reach no beam, and the mapping no property."""
     property_mapping: Mapping[ReinforcementField, str]
     """Field to "Set.Property", either with ``*`` for any characters."""
@@ -271,7 +271,6 @@ class ScheduleRow:
     place: str
     """ "beam_schedule.csv row 7" """
     selection: Selection
-    optional: bool
     """True where the row may reach no beam"""
     start: Position | None
     end: Position | None

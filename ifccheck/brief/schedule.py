@@ -22,15 +22,14 @@ from ifccheck.brief.quantities import (
 from ifccheck.brief.sheets import read_cells
 from ifccheck.errors import BriefError
 from ifccheck.notation import NotationError, parse_bars, parse_stirrups
-from ifccheck.units import QuantityError, clipped
+from ifccheck.units import QuantityError
 
 COLUMNS = (
     "mark", "from", "to", "top", "bottom", "side", "stirrups", "cover", "bar_yield",
-    "stirrup_yield", "optional",
+    "stirrup_yield",
 )  # fmt: skip
-STATING = COLUMNS[3:-1]
+STATING = COLUMNS[3:]
 """Columns of which a row must fill at least one."""
-_ANSWERS = {"yes": True, "true": True, "no": False, "false": False}
 
 Parsed = TypeVar("Parsed")
 Cells = Mapping[str, str]
@@ -41,8 +40,8 @@ def read_schedule(path: Path) -> tuple[ScheduleRow, ...]:
 
     Columns: mark (marks apart by commas, ``*`` as wildcard, ``B-201..B-204`` as range), from and
     to (places along the beam, the whole of it where empty), top, bottom, side and stirrups in
-    bar notation, cover, bar_yield and stirrup_yield with their units, optional (``yes`` where
-    the row may reach no beam). An empty cell says nothing; ``none`` says that there is none.
+    bar notation, cover, bar_yield and stirrup_yield with their units. An empty cell says nothing;
+    ``none`` says that there is none.
     """
     table = read_cells(path)
     if not table:
@@ -85,7 +84,6 @@ def _row(place: str, cells: Cells) -> ScheduleRow:
     return ScheduleRow(
         place=place,
         selection=Selection(beams=_marks(place, cells)),
-        optional=_read(place, cells, "optional", _yes_or_no) or False,
         start=start,
         end=end,
         top=_bars(place, cells, "top"),
@@ -109,12 +107,6 @@ def _marks(place: str, cells: Cells) -> tuple[str, ...]:
         except ValueError as error:
             raise BriefError(f"{place} mark: {error}") from None
     return marks
-
-
-def _yes_or_no(text: str) -> bool:
-    if text.lower() not in _ANSWERS:
-        raise QuantityError(f"{clipped(text)} is neither yes nor no")
-    return _ANSWERS[text.lower()]
 
 
 def _check_order(place: str, start: Position | None, end: Position | None) -> None:

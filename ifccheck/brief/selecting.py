@@ -91,22 +91,6 @@ def check_reached(brief: Brief, found: Sequence[Found]) -> None:
                 )
 
 
-def check_rows_reached(brief: Brief, rows: Sequence[ScheduleRow], found: Sequence[Found]) -> None:
-    """Raise BriefError for a mark of the schedule that reaches no beam in any model of the run.
-
-    A row that says so in its column ``optional``, or any row where the brief says so, may.
-    """
-    for row in rows:
-        if brief.reinforcement_optional or row.optional:
-            continue
-        for part in unreached(row, found):
-            raise BriefError(
-                f"{row.place} mark: {clipped(part.said, 120)} reaches no beam: correct it, or write"
-                " yes for it in a column 'optional', or optional = true under [reinforcement] of"
-                f" {brief.file_name}"
-            )
-
-
 def mapping_remarks(brief: Brief, held: Set[str]) -> tuple[Remark, ...]:
     """Return a remark for every entry of the mapping that reaches no property in a model."""
     return tuple(
@@ -129,7 +113,7 @@ def check_mapping(
     Unseen it would leave the field to another source or to a default that is less. ``properties``
     gives the "Set.Property" that beams have, to tell which may be meant.
     """
-    if brief.reinforcement_optional:
+    if brief.mapping_optional:
         return
     for field, place in brief.property_mapping.items():
         if any(field in of_model for of_model in held):

@@ -23,7 +23,7 @@ def silent_brief(standard: str) -> Brief:
         defaults=Defaults(supports=("pinned", "pinned")),
         sources=DEFAULT_SOURCES,
         schedule=None,
-        reinforcement_optional=False,
+        mapping_optional=False,
         property_mapping={},
         lines={},
         cases=(),
