@@ -248,6 +248,8 @@ def _stated(
         found.append("unloaded = true: self weight alone is meant")
     if statement.loads_complete:
         found.append("loads_complete = true: what rests on the beam is in the loads given")
+    if statement.slab_bars_from:
+        found.append('slab_bars = "anchored": bars of slabs in its flange are anchored')
     if key in sources.ignored:
         found += told_ignored(sources.ignored[key])
     if sources.upward:
