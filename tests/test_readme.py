@@ -9,6 +9,7 @@ import pytest
 
 from ifccheck.brief import schema
 from ifccheck.brief.load import load_brief
+from ifccheck.brief.load_table import KINDS, LOAD_COLUMNS
 from ifccheck.brief.schedule import COLUMNS
 from ifccheck.standards.csa_a23_3_14.combinations import ORDINARY_CATEGORIES
 
@@ -29,7 +30,7 @@ def test_every_key_of_the_brief_is_explained(table: type[schema.Table]) -> None:
 
 
 def test_every_column_and_category_is_listed() -> None:
-    for word in (*COLUMNS, *(ORDINARY_CATEGORIES - {"offices"})):
+    for word in (*COLUMNS, *LOAD_COLUMNS, *KINDS, *(ORDINARY_CATEGORIES - {"offices"})):
         assert word in README, word
 
 

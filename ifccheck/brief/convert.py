@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Mapping, Sequence
 from pathlib import Path
 from typing import cast, get_args
 
@@ -12,7 +12,14 @@ from ifccheck.brief.combination_entries import combination_entries
 from ifccheck.brief.entries import beam_entry, material_entry, support_entry
 from ifccheck.brief.faults import FaultError, Source
 from ifccheck.brief.load_entries import load_entry
-from ifccheck.brief.model import Basis, Brief, Defaults, ReinforcementField, Scope
+from ifccheck.brief.model import (
+    Basis,
+    Brief,
+    Defaults,
+    LoadTableFile,
+    ReinforcementField,
+    Scope,
+)
 from ifccheck.brief.places import did_you_mean, shown
 
 DEFAULT_SOURCES: tuple[SourceName, ...] = ("schedule", "bars", "sections", "properties")
@@ -40,6 +47,7 @@ def to_brief(table: schema.BriefTable, path: Path, source: Source) -> Brief:
         materials=tuple(material_entry(i, t) for i, t in enumerate(table.materials)),
         combinations=combination_entries(table.combinations, cases),
         scope=_scope(table.scope),
+        load_tables=_load_tables(table.load_tables, path),
     )
     _check_slab_bars(brief)
     return brief
@@ -124,15 +132,29 @@ def _sources(table: schema.ReinforcementTable) -> tuple[SourceName, ...]:
 def _schedule(table: schema.ReinforcementTable, path: Path) -> Path | None:
     if table.schedule is None:
         return None
-    file = path.parent / table.schedule
+    return _beside(("reinforcement", "schedule"), table.schedule, path)
+
+
+def _load_tables(tables: Sequence[schema.LoadFileTable], path: Path) -> tuple[LoadTableFile, ...]:
+    known: set[Path] = set()
+    found = []
+    for index, table in enumerate(tables):
+        key = ("load_tables", index, "file")
+        file = _beside(key, table.file, path)
+        if file.resolve() in known:
+            raise FaultError(key, f"'{table.file}' is given twice: its loads would count twice")
+        known.add(file.resolve())
+        found.append(LoadTableFile(table.file, file))
+    return tuple(found)
+
+
+def _beside(key: tuple[str | int, ...], name: str, path: Path) -> Path:
+    """A table that stands beside the brief."""
+    file = path.parent / name
     if file.suffix.lower() not in (".csv", ".xlsx"):
-        raise FaultError(
-            ("reinforcement", "schedule"), f"'{table.schedule}' is neither .csv nor .xlsx"
-        )
+        raise FaultError(key, f"'{name}' is neither .csv nor .xlsx")
     if not file.is_file():
-        raise FaultError(
-            ("reinforcement", "schedule"), f"there is no file '{table.schedule}' beside the brief"
-        )
+        raise FaultError(key, f"there is no file '{name}' beside the brief")
     return file
 
 

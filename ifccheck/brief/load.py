@@ -5,6 +5,7 @@ from __future__ import annotations
 import hashlib
 import re
 import tomllib
+from dataclasses import replace
 from pathlib import Path
 from typing import Any
 
@@ -20,6 +21,7 @@ def load_brief(path: Path) -> Brief:
     from pydantic import ValidationError
 
     from ifccheck.brief.convert import to_brief
+    from ifccheck.brief.load_table import read_load_table
     from ifccheck.brief.schema import BriefTable, known_keys
 
     content = read_bytes(path, path.name)
@@ -34,7 +36,8 @@ def load_brief(path: Path) -> Brief:
         brief = to_brief(table, path, source)
     except FaultError as fault:
         raise source.error(fault.path, fault.text) from None
-    return _with_digest(brief, content)
+    rows = tuple(row for table in brief.load_tables for row in read_load_table(table, brief.cases))
+    return _with_digest(replace(brief, loads=(*brief.loads, *rows)), content)
 
 
 def _parsed(text: str, file_name: str) -> dict[str, Any]:
@@ -50,9 +53,9 @@ def _parsed(text: str, file_name: str) -> dict[str, Any]:
 
 
 def _with_digest(brief: Brief, content: bytes) -> Brief:
-    from dataclasses import replace
-
     digest = hashlib.sha256(content)
     if brief.schedule is not None:
         digest.update(read_bytes(brief.schedule, f"{brief.file_name}: reinforcement.schedule"))
+    for table in brief.load_tables:
+        digest.update(read_bytes(table.path, table.name))
     return replace(brief, sha256=digest.hexdigest())

@@ -106,6 +106,8 @@ class LoadEntry:
     """ "60 kN at 2.1 m" """
     upward: bool = False
     """The engineer means a load that acts upward"""
+    in_table: bool = False
+    """It is a row of a table: ``place`` is "loads.csv row 7" """
 
     @property
     def acts_upward(self) -> bool:
@@ -212,6 +214,21 @@ class Scope:
 NO_SCOPE = Scope({}, {}, False)
 
 
+ROW_COLUMNS: Mapping[str, str] = {
+    "beams": "beam", "line": "value", "point": "value", "moment": "value", "area": "value",
+}  # fmt: skip
+"""Columns of a table of loads that are not called as the key of ``[[loads]]`` is"""
+
+
+@dataclass(frozen=True, slots=True)
+class LoadTableFile:
+    """One entry of ``[[load_tables]]``."""
+
+    name: str
+    """As the brief has it"""
+    path: Path
+
+
 @dataclass(frozen=True, slots=True)
 class Brief:
     """The engineer's brief, validated."""
@@ -219,7 +236,7 @@ class Brief:
     path: Path
     file_name: str
     sha256: str
-    """Of the brief's bytes and, where it names one, of the schedule's."""
+    """Of the brief's bytes and of those of every table that it names."""
     basis: Basis
     defaults: Defaults
     sources: tuple[SourceName, ...]
@@ -238,6 +255,8 @@ class Brief:
     materials: tuple[MaterialEntry, ...] = ()
     combinations: tuple[CombinationEntry, ...] = ()
     scope: Scope = NO_SCOPE
+    load_tables: tuple[LoadTableFile, ...] = ()
+    """Tables whose rows are among ``loads``"""
 
     @property
     def asks_for_slabs(self) -> bool:
@@ -255,6 +274,8 @@ class Brief:
 
     def where(self, entry: Entry, key: str = "") -> str:
         """File, place and line of an entry, for an error."""
+        if isinstance(entry, LoadEntry) and entry.in_table:
+            return f"{entry.place} {ROW_COLUMNS.get(key, key)}".rstrip()
         place = f"{entry.place}.{key}" if key else entry.place
         return self.at(place, self.lines.get(entry.place))
 

@@ -2,13 +2,10 @@
 
 from __future__ import annotations
 
-import re
-from collections.abc import Callable, Mapping, Sequence
+from collections.abc import Sequence
 from pathlib import Path
-from typing import TypeVar
 
 from ifccheck.beam import BarGroup
-from ifccheck.brief.mark_ranges import expanded
 from ifccheck.brief.model import Position, ScheduleRow, Selection
 from ifccheck.brief.places import did_you_mean
 from ifccheck.brief.quantities import (
@@ -19,10 +16,10 @@ from ifccheck.brief.quantities import (
     read_position,
     read_within,
 )
+from ifccheck.brief.row_cells import Cells, marks_in, named, read_cell
 from ifccheck.brief.sheets import read_cells
 from ifccheck.errors import BriefError
-from ifccheck.notation import NotationError, parse_bars, parse_stirrups
-from ifccheck.units import QuantityError
+from ifccheck.notation import parse_bars, parse_stirrups
 
 COLUMNS = (
     "mark", "from", "to", "top", "bottom", "side", "stirrups", "cover", "bar_yield",
@@ -30,9 +27,6 @@ COLUMNS = (
 )  # fmt: skip
 STATING = COLUMNS[3:]
 """Columns of which a row must fill at least one."""
-
-Parsed = TypeVar("Parsed")
-Cells = Mapping[str, str]
 
 
 def read_schedule(path: Path) -> tuple[ScheduleRow, ...]:
@@ -48,7 +42,7 @@ def read_schedule(path: Path) -> tuple[ScheduleRow, ...]:
         raise BriefError(f"{path.name}: is empty: the first row must name the columns")
     columns = _columns(path.name, table[0][1])
     return tuple(
-        _row(f"{path.name} row {number}", _named(path.name, number, columns, cells))
+        _row(f"{path.name} row {number}", named(path.name, number, columns, cells))
         for number, cells in table[1:]
     )
 
@@ -66,24 +60,15 @@ def _columns(file_name: str, header: Sequence[str]) -> list[str]:
     return names
 
 
-def _named(file_name: str, number: int, columns: list[str], cells: Sequence[str]) -> Cells:
-    if any(cell.strip() for cell in cells[len(columns) :]):
-        raise BriefError(
-            f"{file_name} row {number}: has more cells than there are columns: a text that holds"
-            " the separator must stand in quotes"
-        )
-    return {name: cell.strip() for name, cell in zip(columns, cells, strict=False)}
-
-
 def _row(place: str, cells: Cells) -> ScheduleRow:
     if not any(cells.get(name) for name in STATING):
         raise BriefError(f"{place}: states nothing: fill at least one of {', '.join(STATING)}")
-    start, end = (_read(place, cells, name, read_position) for name in ("from", "to"))
+    start, end = (read_cell(place, cells, name, read_position) for name in ("from", "to"))
     _check_order(place, start, end)
-    stirrups = _read(place, cells, "stirrups", parse_stirrups)
+    stirrups = read_cell(place, cells, "stirrups", parse_stirrups)
     return ScheduleRow(
         place=place,
-        selection=Selection(beams=_marks(place, cells)),
+        selection=Selection(beams=marks_in(place, cells, "mark")),
         start=start,
         end=end,
         top=_bars(place, cells, "top"),
@@ -97,37 +82,14 @@ def _row(place: str, cells: Cells) -> ScheduleRow:
     )
 
 
-def _marks(place: str, cells: Cells) -> tuple[str, ...]:
-    marks = tuple(mark.strip() for mark in re.split(r"[,\n]", cells.get("mark", "")))
-    if not all(marks):
-        raise BriefError(f"{place} mark: is empty: name the beam that the row is for")
-    for mark in marks:
-        try:
-            expanded(mark)
-        except ValueError as error:
-            raise BriefError(f"{place} mark: {error}") from None
-    return marks
-
-
 def _check_order(place: str, start: Position | None, end: Position | None) -> None:
     if start and end and not start.may_precede(end, LEAST_LENGTH):
         raise BriefError(f"{place} to: '{end.text}' is not beyond from = '{start.text}'")
 
 
 def _bars(place: str, cells: Cells, column: str) -> tuple[BarGroup, ...] | None:
-    return _read(place, cells, column, parse_bars)
+    return read_cell(place, cells, column, parse_bars)
 
 
 def _within(place: str, cells: Cells, column: str, limits: Range) -> float | None:
-    return _read(place, cells, column, lambda text: read_within(text, limits))
-
-
-def _read(place: str, cells: Cells, column: str, parse: Callable[[str], Parsed]) -> Parsed | None:
-    """What a cell says; None where it is empty."""
-    text = cells.get(column)
-    if not text:
-        return None
-    try:
-        return parse(text)
-    except (NotationError, QuantityError) as error:
-        raise BriefError(f"{place} {column}: {error}") from None
+    return read_cell(place, cells, column, lambda text: read_within(text, limits))

@@ -211,6 +211,12 @@ class LoadTable(SelectingTable):
     eccentricity: Length | None = None
 
 
+class LoadFileTable(Table):
+    """``[[load_tables]]``"""
+
+    file: Name
+
+
 class SupportTable(SelectingTable):
     """``[[supports]]``"""
 
@@ -260,6 +266,7 @@ class BriefTable(Table):
     reinforcement: ReinforcementTable = Field(default_factory=ReinforcementTable)
     cases: dict[Name, CaseTable] = Field(default_factory=dict)
     loads: list[LoadTable] = Field(default_factory=list)
+    load_tables: list[LoadFileTable] = Field(default_factory=list)
     supports: list[SupportTable] = Field(default_factory=list)
     beams: list[BeamTable] = Field(default_factory=list)
     materials: list[MaterialTable] = Field(default_factory=list)
@@ -273,6 +280,7 @@ _TABLES: dict[str, type[Table]] = {
     "reinforcement": ReinforcementTable,
     "cases": CaseTable,
     "loads": LoadTable,
+    "load_tables": LoadFileTable,
     "supports": SupportTable,
     "beams": BeamTable,
     "materials": MaterialTable,

@@ -20,9 +20,12 @@ _SAVE = "save the table again as .xlsx or .csv"
 Rows = list[tuple[int, list[str]]]
 
 
-def read_cells(path: Path) -> Rows:
-    """Return the rows that hold anything, each with its number in the file, counted from 1."""
-    cells = _xlsx(path) if path.suffix.lower() == ".xlsx" else _csv(path)
+def read_cells(path: Path, sheet: str = "schedule") -> Rows:
+    """Return the rows that hold anything, each with its number in the file, counted from 1.
+
+    Of a workbook with several sheets the one called ``sheet`` is read.
+    """
+    cells = _xlsx(path, sheet) if path.suffix.lower() == ".xlsx" else _csv(path)
     rows = [(number, row) for number, row in enumerate(cells, 1) if any(c.strip() for c in row)]
     if len(rows) > GREATEST_ROWS:
         raise BriefError(f"{path.name}: has more than {GREATEST_ROWS} rows")
@@ -46,7 +49,7 @@ def _separator(text: str) -> str:
     return max(",;\t", key=heading.count)
 
 
-def _xlsx(path: Path) -> list[list[str]]:
+def _xlsx(path: Path, sheet_name: str) -> list[list[str]]:
     content = read_bytes(path, path.name)
     _check_archive(content, path.name)
     import openpyxl
@@ -57,7 +60,7 @@ def _xlsx(path: Path) -> list[list[str]]:
         raise BriefError(
             f"{path.name}: not a readable XLSX workbook ({_oneline(error)}); {_SAVE}"
         ) from None
-    sheet = _schedule_sheet(book, path.name)
+    sheet = _sheet(book, path.name, sheet_name)
     try:
         return [
             [_text(cell, path.name) for cell in row[:GREATEST_COLUMNS]]
@@ -75,14 +78,14 @@ def _oneline(error: Exception) -> str:
     return " ".join(str(error).split()) or type(error).__name__
 
 
-def _schedule_sheet(book: Any, file_name: str) -> Any:
+def _sheet(book: Any, file_name: str, name: str) -> Any:
     sheets = book.worksheets
     if len(sheets) == 1:
         return sheets[0]
-    named = [sheet for sheet in sheets if sheet.title.strip().lower() == "schedule"]
+    named = [sheet for sheet in sheets if sheet.title.strip().lower() == name]
     if len(named) != 1:
         raise BriefError(
-            f"{file_name}: has {len(sheets)} sheets: keep one, or name the one to read 'schedule'"
+            f"{file_name}: has {len(sheets)} sheets: keep one, or name the one to read '{name}'"
         )
     return named[0]
 
