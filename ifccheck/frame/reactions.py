@@ -145,18 +145,28 @@ def reactions_reason(contacts: Sequence[Contact]) -> Reason | None:
 
 def unmeasured_reason(beam: Beam, unmeasured: Sequence[Unmeasured]) -> Reason | None:
     """Why a beam is not rated where members may rest on it that no one knows the place of."""
-    near = [
-        each
-        for each in unmeasured
-        if each.step_id != beam.step_id and (not beam.storey or each.storey in ("", beam.storey))
-    ]
+    near = unmeasured_near(beam, unmeasured)
     if not near:
         return None
-    names = sorted({each.name or f"{each.ifc_class} #{each.step_id}" for each in near})
+    names = names_of(near)
     rest = f" and {len(names) - _NAMED} more" if len(names) > _NAMED else ""
     count = "1 member has" if len(near) == 1 else f"{len(near)} members have"
     text = f"{count} no readable extent ({', '.join(names[:_NAMED])}{rest})"
     return Reason(f"reactions not included: {text}", blocking=False)
+
+
+def unmeasured_near(beam: Beam, unmeasured: Sequence[Unmeasured]) -> list[Unmeasured]:
+    """Members that may touch a beam for all that the model tells."""
+    return [
+        each
+        for each in unmeasured
+        if each.step_id != beam.step_id and (not beam.storey or each.storey in ("", beam.storey))
+    ]
+
+
+def names_of(unmeasured: Sequence[Unmeasured]) -> list[str]:
+    """What people call members of which nobody knows where they are, in order."""
+    return sorted({each.name or f"{each.ifc_class} #{each.step_id}" for each in unmeasured})
 
 
 def _told(contact: Contact) -> str:

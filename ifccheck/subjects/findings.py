@@ -8,6 +8,7 @@ from dataclasses import dataclass, field
 from ifccheck.beam import Contact, Given, Reason, Remark, Support, Unmeasured
 from ifccheck.brief.model import Brief
 from ifccheck.brief.statements import BeamStatement, MaterialStatement
+from ifccheck.frame.bar_ends import Surroundings
 from ifccheck.frame.flanges import Slabs
 from ifccheck.frame.openings import Net
 from ifccheck.rating.shape import Stance
@@ -74,3 +75,4 @@ class Sources:
     upward: Mapping[str, bool]
     """Entries of loads that act upward, by place, and whether the engineer says so"""
     slabs: Slabs
+    around: Surroundings

@@ -31,6 +31,7 @@ from ifccheck.brief.supports import (
     stated_ends,
     told_ignored,
 )
+from ifccheck.frame.bar_ends import Surroundings
 from ifccheck.frame.carrying import contacts_of, pressed_ends
 from ifccheck.frame.flanges import NO_MEETING, Slabs
 from ifccheck.frame.openings import Net, net_of
@@ -84,6 +85,7 @@ def gather(model: Model, brief: Brief, matches: Matches, standard: Standard) -> 
         supports=supports,
         support_remarks=_by_beam(remarks),
         slabs=Slabs(model.beams, model.slabs, model.members),
+        around=Surroundings(model.members, _not_concrete(model)),
         unit_weight=Given(brief.basis.concrete_unit_weight, "brief, basis.concrete_unit_weight"),
         crane_cases={case.name for case in brief.cases if case.nature == "crane"},
         stances=stances(model.beams),
@@ -107,6 +109,13 @@ def gather(model: Model, brief: Brief, matches: Matches, standard: Standard) -> 
         subjects=tuple(each for each in found if isinstance(each, Subject)),
         unrated=tuple(each for each in found if isinstance(each, Unrated)),
         loads=loads,
+    )
+
+
+def _not_concrete(model: Model) -> frozenset[int]:
+    """Step ids of beams that are left out and no concrete that bars may run on into."""
+    return frozenset(
+        each.step_id for each in model.out_of_scope if each.reason not in ("footing", "wall")
     )
 
 

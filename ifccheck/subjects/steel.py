@@ -9,6 +9,7 @@ from typing import NamedTuple
 from ifccheck.beam import Bars, Beam, Face, Given, Reinforcement, Remark, Stirrups
 from ifccheck.brief.statements import MaterialStatement
 from ifccheck.detailing import Layout, choose_source, lay_out
+from ifccheck.frame.bar_ends import ended_in_concrete
 from ifccheck.subjects.elsewhere import (
     Stated,
     differing_yields,
@@ -42,7 +43,7 @@ def steel_of(beam: Beam, sources: Sources, findings: Findings) -> Steel | None:
     if chosen.reinforcement is None:
         return None
     taken, defaults = chosen.reinforcement, sources.defaults
-    placed = _placed(beam, taken, sources, stated, findings)
+    placed = _ended(beam, _placed(beam, taken, sources, stated, findings), sources, findings)
     bar_yield = _fallback(beam, taken, "bar_yield", stated.bar_yield, defaults.bar_yield, findings)
     stirrup_yield = _fallback(
         beam, taken, "stirrup_yield", stated.stirrup_yield, defaults.stirrup_yield, findings
@@ -103,6 +104,15 @@ def _placed(
     findings.remarks += laid.remarks
     findings.reasons += laid.reasons
     return laid
+
+
+def _ended(beam: Beam, placed: Layout, sources: Sources, findings: Findings) -> Layout:
+    """The same with its bars as far as they lie in concrete of the model."""
+    contacts = sources.contacts.get(beam.key, ())
+    ended = ended_in_concrete(beam, placed.bars, contacts, sources.around, sources.unmeasured)
+    findings.reasons += ended.reasons
+    findings.remarks += ended.remarks
+    return placed._replace(bars=ended.bars)
 
 
 def _aggregate_for_layout(stated: MaterialStatement, sources: Sources, findings: Findings) -> float:
