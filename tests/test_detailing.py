@@ -465,10 +465,10 @@ def test_steel_that_only_the_source_not_used_states_is_told():
 
 def test_rows_whose_height_is_given_count_at_their_face():
     group = BarGroup(2, "25M", 25.2, 500.0)
-    rows = DescribedZone(rows=(BarRow("bottom", group, 60.0), BarRow("bottom", group, 110.0)))
+    rows = DescribedZone(rows=(BarRow("bottom", group, 40.0), BarRow("bottom", group, 88.0)))
     both = beam(reinforcement=(described("sections", rows), says("bars", bars=(5, 500.0))))
     [remark] = choose_source(both, ("sections", "bars")).remarks
-    assert remark.text.endswith("bottom bars 2500 mm2 against 2000 mm2 (+25 %)")
+    assert "bottom bars 2500 mm2 against 2000 mm2 (+25 %)" in remark.text
     agreeing = beam(reinforcement=(described("sections", rows), says("bars")))
     assert choose_source(agreeing, ("sections", "bars")).remarks == ()
 
@@ -511,6 +511,51 @@ def test_what_a_source_does_not_say_is_no_difference():
         )
     )
     assert choose_source(both, ALL).remarks == ()
+
+
+def test_covers_that_two_sources_give_otherwise_are_told():
+    of = {cover: described("schedule", zone(cover=cover)) for cover in (40.0, 41.0, 60.0)}
+    stated = described("properties", zone(cover=40.0))
+    [remark] = choose_source(beam(reinforcement=(of[60.0], stated)), ALL).remarks
+    assert remark.kind == "doubt"
+    assert remark.text == (
+        "schedule used; properties differs: clear cover 40.0 mm against 60.0 mm (-33 %)"
+    )
+    for near in (of[40.0], of[41.0], described("schedule", zone())):
+        assert choose_source(beam(reinforcement=(near, stated)), ALL).remarks == ()
+
+
+def test_a_cover_that_drawn_stirrups_do_not_have_is_told():
+    """Stirrups drawn 25 mm from the soffit and 40 mm from the top of a beam 600 high."""
+    drawn = physical()
+    stirrups = (replace(drawn.stirrups[0], bottom=25.0, top=560.0),)
+    both = beam(
+        reinforcement=(
+            replace(drawn, stirrups=stirrups),
+            described("properties", zone(cover=40.0)),
+        )
+    )
+    [remark] = choose_source(both, ("bars", "properties")).remarks
+    assert remark.text == (
+        "bars used; properties differs: clear cover 40.0 mm against 25.0 mm (+60 %)"
+    )
+
+
+@pytest.mark.parametrize(("z", "told"), [(63.0, ""), (110.0, "110 mm against 64.0 mm (+72 %)")])
+def test_bars_that_two_sources_place_otherwise_are_told(z: float, told: str):
+    rows = DescribedZone(
+        rows=(
+            BarRow("bottom", BarGroup(3, "25M", 25.2, 500.0), z),
+            BarRow("top", BarGroup(2, "20M", 19.5, 300.0), 540.0),
+        )
+    )
+    both = beam(reinforcement=(physical(), described("sections", rows)))
+    remarks = choose_source(both, ("bars", "sections")).remarks
+    assert "".join(remark.text for remark in remarks) == (
+        f"bars used; sections differs: middle of the bottom bars from the soffit {told}"
+        if told
+        else ""
+    )
 
 
 def test_bars_that_do_not_overlap_are_not_added_up():

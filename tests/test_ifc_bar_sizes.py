@@ -243,5 +243,24 @@ def test_a_surface_that_only_the_type_tells() -> None:
     kind = model.root("IfcReinforcingBarType", Name="T", PredefinedType="MAIN", BarSurface="PLAIN")
     model.root("IfcRelDefinesByType", RelatedObjects=bars, RelatingType=kind)
     assert "plain surface" in model.read(beam).reasons
-    bars[1].BarSurface = "TEXTURED"
-    assert [bar.count for bar in model.read(beam).bars] == [1]
+
+
+@pytest.mark.parametrize(
+    ("of_type", "own", "told"),
+    [
+        ("PLAIN", "TEXTURED", "plain surface by its type and a textured one by itself"),
+        ("TEXTURED", "PLAIN", "plain surface by itself and a textured one by its type"),
+        ("TEXTURED", "TEXTURED", ""),
+    ],
+)
+def test_a_surface_that_the_type_denies_is_the_worse_one(of_type: str, own: str, told: str) -> None:
+    model = ModelWithBars()
+    beam = model.beam()
+    bars = model.bars(beam, straight(50, 5950, -80, 60), straight(50, 5950, 80, 60))
+    kind = model.root("IfcReinforcingBarType", Name="T", PredefinedType="MAIN", BarSurface=of_type)
+    model.root("IfcRelDefinesByType", RelatedObjects=bars[1:], RelatingType=kind)
+    bars[1].BarSurface = own
+    found = model.read(beam)
+    assert told in found.reasons
+    assert bool(found.reasons) == bool(told)
+    assert sum(bar.count for bar in found.bars) == (1 if told else 2)

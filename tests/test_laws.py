@@ -34,7 +34,7 @@ LENGTH = 6300.0
 ELL: Outline = ((-150, 0), (150, 0), (150, 450), (550, 450), (550, 600), (-150, 600))
 """A flange on the left alone, so that left and right differ"""
 
-SOFFIT = Layer("25M", 64.0, (-85.0, 0.0, 85.0), -100.0, LENGTH - 40.0, (True, False), 420.0)
+SOFFIT = Layer("25M", 64.0, (-85.0, 0.0, 85.0), 40.0, LENGTH - 40.0, (True, False), 420.0)
 CURTAILED = Layer("20M", 124.0, (-70.0, 30.0), 900.0, 4300.0)
 TOP = Layer("15M", 540.0, (-85.0, 85.0), 40.0, LENGTH - 40.0)
 CLOSE = Ties("10M", tuple(100.0 + 150.0 * n for n in range(15)), 104.35, 45.65, 554.35)

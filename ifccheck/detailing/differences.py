@@ -14,12 +14,15 @@ AGREEMENT = 0.05
 """Sources whose areas differ by no more than this part are taken to agree."""
 LEAST_STRETCH = 0.05
 """Differences over less than this part of the length, as where bars end, are left out."""
+LEAST_SHIFT = 5.0
+"""Places that differ by no more than this are taken to be one: rounding of drawings [mm]"""
 MOST_STRETCHES = 3
 """Stretches that are told of each kind of steel."""
 
 
 class _Amount(NamedTuple):
-    """Steel at a place: bars [mm2], or stirrups [mm2/mm]; None where the source does not say."""
+    """Steel at a place: bars [mm2], stirrups [mm2/mm], or how far from a face it lies [mm]; None
+    where the source does not say."""
 
     value: float | None
     text: str
@@ -34,17 +37,30 @@ class _Stretch(NamedTuple):
 
 @dataclass(frozen=True, slots=True)
 class _Steel:
-    """One kind of steel, and how much of it a source has at a place."""
+    """One kind of steel, and how much of it a source has at a place, or where it lies there."""
 
     name: str
     at: Callable[[Beam, Reinforcement, float], _Amount]
+    is_place: bool = False
+    """A place that only the other source gives is no difference."""
+
+    def differs(self, stretch: _Stretch) -> bool:
+        """Whether the sources differ on a stretch."""
+        one, two = stretch.taken.value, stretch.other.value
+        if two is None:
+            return False
+        if one is None:
+            return two > 0.0 and not self.is_place
+        least = LEAST_SHIFT if self.is_place else 0.0
+        return abs(one - two) > max(AGREEMENT * max(one, two), least)
 
 
 def difference(beam: Beam, taken: Reinforcement, other: Reinforcement) -> str:
     """Return how another source differs from the one that is used, empty where they agree.
 
-    Areas are compared face by face wherever either changes along the beam. What the other
-    source does not speak of is no difference; what only the other speaks of is one.
+    Areas are compared face by face wherever either changes along the beam, and so are the clear
+    cover and the distance of the bars from their face where both give them. What the other source
+    does not speak of is no difference; steel of which only the other speaks is one.
     """
     parts = [part for steel in _KINDS for part in _told(beam, steel, taken, other)]
     return f"{taken.source} used; {other.source} differs: {'; '.join(parts)}" if parts else ""
@@ -54,7 +70,7 @@ def _told(beam: Beam, steel: _Steel, taken: Reinforcement, other: Reinforcement)
     found = [
         stretch
         for stretch in _stretches(beam, steel, taken, other)
-        if stretch.end - stretch.start >= LEAST_STRETCH * beam.length and _differ(stretch)
+        if stretch.end - stretch.start >= LEAST_STRETCH * beam.length and steel.differs(stretch)
     ]
     for stretch in found[:MOST_STRETCHES]:
         yield f"{steel.name} {_words(stretch, taken.source)}{_where(beam, stretch)}"
@@ -92,15 +108,6 @@ def _extent(beam: Beam, zone: DescribedZone) -> tuple[float, float]:
         0.0 if zone.start is None else zone.start,
         beam.length if zone.end is None else zone.end,
     )
-
-
-def _differ(stretch: _Stretch) -> bool:
-    one, two = stretch.taken.value, stretch.other.value
-    if two is None:
-        return False
-    if one is None:
-        return two > 0.0
-    return abs(one - two) > AGREEMENT * max(one, two)
 
 
 def _words(stretch: _Stretch, used: str) -> str:
@@ -178,17 +185,76 @@ def _per_length(sets: Sequence[tuple[int | None, float, float]]) -> _Amount:
     return _Amount(ratio, f"{each}, {1000.0 * ratio:.0f} mm2/m" if known else "none")
 
 
+def _bottom_place(beam: Beam, source: Reinforcement, x: float) -> _Amount:
+    return _place(beam, source, x, "bottom")
+
+
+def _top_place(beam: Beam, source: Reinforcement, x: float) -> _Amount:
+    return _place(beam, source, x, "top")
+
+
+def _place(beam: Beam, source: Reinforcement, x: float, face: Face) -> _Amount:
+    """How far the middle of the bars of a face lies from it; not stated where any is given by its
+    number alone."""
+    placed: list[tuple[float, float]]
+    if source.zones:
+        zones = _zones_at(beam, source, x)
+        rows = [row for zone in zones for row in zone.rows if row.face == face]
+        placed = (
+            []
+            if any(getattr(zone, face) for zone in zones)
+            else [(row.group.count * row.group.area, row.z) for row in rows]
+        )
+    else:
+        low, high = _thirds(beam)
+        there = [bar for bar in source.bars if bar.start <= x <= bar.end]
+        of_face = [bar for bar in there if (bar.z < low if face == "bottom" else bar.z > high)]
+        placed = [(bar.count * bar.area, bar.z) for bar in of_face]
+    area = sum(each for each, _ in placed)
+    if not area:
+        return _NOT_STATED
+    bottom, top = _heights(beam)
+    height = sum(each * z for each, z in placed) / area
+    return _distance(height - bottom if face == "bottom" else top - height)
+
+
+def _cover(beam: Beam, source: Reinforcement, x: float) -> _Amount:
+    """Clear cover: as stated, the greatest of several, or as the stirrups are drawn, the least."""
+    if source.zones:
+        stated = [zone.cover for zone in _zones_at(beam, source, x) if zone.cover is not None]
+        return _distance(max(stated)) if stated else _NOT_STATED
+    if len({end for run in beam.runs for end in (run.outline, run.outline_end) if end}) > 1:
+        return _NOT_STATED
+    bottom, top = _heights(beam)
+    sets = [each for each in source.stirrups if each.start <= x <= each.end]
+    drawn = [each.bottom - bottom for each in sets if each.bottom is not None]
+    drawn += [top - each.top for each in sets if each.top is not None]
+    return _distance(min(drawn)) if drawn else _NOT_STATED
+
+
+def _distance(distance: float) -> _Amount:
+    return _Amount(distance, show(distance, "dimension"))
+
+
 _NOT_STATED = _Amount(None, "")
 _KINDS = (
     _Steel("bottom bars", _bottom),
     _Steel("top bars", _top),
     _Steel("stirrups", _stirrups),
+    _Steel("clear cover", _cover, is_place=True),
+    _Steel("middle of the bottom bars from the soffit", _bottom_place, is_place=True),
+    _Steel("middle of the top bars from the top", _top_place, is_place=True),
 )
 
 
 def _thirds(beam: Beam) -> tuple[float, float]:
     """Heights below which bars are bottom bars, and above which they are top bars [mm]."""
+    low, high = _heights(beam)
+    return low + (high - low) / 3.0, high - (high - low) / 3.0
+
+
+def _heights(beam: Beam) -> tuple[float, float]:
+    """The least and the greatest height of the outlines along a beam [mm]."""
     outlines = [end for run in beam.runs for end in (run.outline, run.outline_end) if end]
     heights = [z for outline in outlines for ring in outline.rings for _, z in ring]
-    low, high = min(heights, default=0.0), max(heights, default=0.0)
-    return low + (high - low) / 3.0, high - (high - low) / 3.0
+    return min(heights, default=0.0), max(heights, default=0.0)

@@ -172,7 +172,7 @@ class BarData:
             size,
             self._grade(grade, steel, hints, about.name, object_type),
             named.not_covered
-            or not_covered(surface or about.surface, [text for text in said_of_it if text]),
+            or not_covered(surface or "", filter(None, said_of_it), about.surface),
         )
 
     def _named(self, name: str) -> str:
