@@ -99,6 +99,15 @@ def test_a_text_that_a_spreadsheet_would_run_is_neutralised(text: str) -> None:
     assert neutral(text).startswith("'")
 
 
+def test_a_table_is_spelled_as_the_csv_module_spells_it() -> None:
+    for report in (REPORT, hostile_report()):
+        text = ratings_csv(report)
+        again = io.StringIO()
+        csv.writer(again, lineterminator="\n").writerows(csv.reader(io.StringIO(text)))
+        assert text == again.getvalue()
+        assert '"' in text
+
+
 def test_no_cell_and_no_head_of_a_hostile_table_starts_a_formula() -> None:
     report = hostile_report()
     hostile_case = replace(report.cases[0], case="=cmd|' /C calc'!A1")

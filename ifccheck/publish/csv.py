@@ -2,8 +2,6 @@
 
 from __future__ import annotations
 
-import csv
-import io
 from math import isfinite
 
 from ifccheck.publish.report import Report
@@ -21,23 +19,28 @@ def ratings_csv(report: Report) -> str:
     """
     cases = [case.case for case in report.cases]
     columns = ratings_columns(report.model.beams, report.ratings, report.spans, cases)
-    text = io.StringIO()
-    writer = csv.writer(text, lineterminator="\n")
-    writer.writerow(map(neutral, columns))
-    writer.writerows(zip(*map(_cells, columns.values()), strict=True))
-    return text.getvalue()
+    rows = zip(*map(_spelled, columns.values()), strict=True)
+    lines = [",".join(map(_quoted, columns)), *map(",".join, rows), ""]
+    return "\n".join(lines)
 
 
-def _cells(column: list[Cell]) -> list[Cell]:
-    """A column as it is written; what is the same is looked at once."""
-    distinct = set(column)
-    other: dict[Cell, Cell] = {
-        each: told
-        for each in distinct
-        if isinstance(each, str) and (told := neutral(each)) is not each
-    }
-    other |= {each: None for each in distinct if isinstance(each, float) and not isfinite(each)}
-    return [other.get(value, value) for value in column] if other else column
+def _spelled(column: list[Cell]) -> list[str]:
+    """A column as it is written; a text that many beams share is looked at once.
+
+    Figures are not told apart by value, for 0.0 and -0.0 are equal.
+    """
+    texts = {each: _quoted(each) for each in set(column) if isinstance(each, str)}
+    return [texts[each] if isinstance(each, str) else _figure(each) for each in column]
+
+
+def _figure(value: float | None) -> str:
+    return "" if value is None or not isfinite(value) else repr(value)
+
+
+def _quoted(text: str) -> str:
+    """A text as a cell: in quotation marks where it holds what ends a cell."""
+    told = neutral(text)
+    return '"{}"'.format(told.replace('"', '""')) if '"' in told or "," in told else told
 
 
 def neutral(text: str) -> str:
