@@ -5,12 +5,18 @@ from __future__ import annotations
 import os
 import secrets
 import shutil
-from collections.abc import Mapping
+from collections.abc import Iterable, Mapping
 from contextlib import suppress
 from dataclasses import dataclass
 from pathlib import Path
 
 from ifccheck.errors import OutputError, UsageError
+
+Content = bytes | Iterable[bytes | memoryview]
+"""What goes into a file: whole, or in parts that may be made while they are written"""
+
+_BUFFER = 2**20
+"""Bytes of small parts that are written in one go"""
 
 
 @dataclass(slots=True)
@@ -24,16 +30,16 @@ class _Output:
     in_place: bool = False
 
 
-def write_all(files: Mapping[Path, bytes], elsewhere: str = "another folder with --out") -> None:
+def write_all(files: Mapping[Path, Content], elsewhere: str = "another folder with --out") -> None:
     """Write files whole; where one cannot be written, leave everything as it was."""
     outputs = [_output(target) for target in files]
     made_folders: list[Path] = []
     current = next(iter(files), Path())
     try:
-        for output, data in zip(outputs, files.values(), strict=True):
+        for output, content in zip(outputs, files.values(), strict=True):
             current = output.target
             made_folders += _make_folder(output.target.parent)
-            _stage(output, data)
+            _stage(output, content)
         for output in outputs:
             current = output.target
             _keep_earlier(output)
@@ -82,11 +88,11 @@ def _make_folder(folder: Path) -> list[Path]:
     return missing
 
 
-def _stage(output: _Output, data: bytes) -> None:
+def _stage(output: _Output, content: Content) -> None:
     if output.target.is_dir():
         raise IsADirectoryError(f"{output.target} is a folder")
-    with output.staged.open("xb") as stream:
-        stream.write(data)
+    with output.staged.open("xb", buffering=_BUFFER) as stream:
+        stream.writelines([content] if isinstance(content, bytes) else content)
         stream.flush()
         os.fsync(stream.fileno())
 

@@ -34,7 +34,7 @@ from ifccheck.ifc.selection import select
 from ifccheck.ifc.step_table import make_step_table
 from ifccheck.ifc.suggestions import all_properties
 from ifccheck.memory import uncollected
-from ifccheck.outputs import write_all
+from ifccheck.outputs import Content, write_all
 from ifccheck.publish.report import Report
 from ifccheck.rating.batch import Batch, batches
 from ifccheck.sheet import Sheet
@@ -299,7 +299,7 @@ def publish(
     run: Run, out: Path, only: Collection[str], say: Say = lambda _: None
 ) -> dict[str, tuple[Path, ...]]:
     """Write the results of a run, all of them or none; return the paths by model."""
-    files: dict[Path, bytes] = {}
+    files: dict[Path, Content] = {}
     written: dict[str, tuple[Path, ...]] = {}
     for rated in run.rated:
         say(f"publishing {rated.report.model.file_name}")
@@ -310,7 +310,7 @@ def publish(
     return written
 
 
-def write_beside(files: Mapping[Path, bytes], inputs: Iterable[Path]) -> None:
+def write_beside(files: Mapping[Path, Content], inputs: Iterable[Path]) -> None:
     """Write files, all of them or none, and none of them over an input."""
     sources = {path.resolve() for path in inputs}
     if overwritten := sources & {path.resolve() for path in files}:

@@ -11,6 +11,7 @@ from typing import TYPE_CHECKING
 from ifccheck.beam import Beam, Case, Combination, Model, Reason, Remark
 from ifccheck.brief.model import Brief
 from ifccheck.findings import Finding
+from ifccheck.outputs import Content
 from ifccheck.publish.report import Assumption, CaseSummary, Report
 from ifccheck.publish.words import CURES, NO_LOAD, head_of
 from ifccheck.rating.answers import ratings_of, unrated, unstated_stirrups
@@ -162,16 +163,16 @@ def _assumed(text: str) -> str:
 
 def files_of(
     opened: OpenedModel, report: Report, out: Path, only: Collection[str]
-) -> dict[Path, bytes]:
+) -> dict[Path, Content]:
     """Name and make the result files of one model."""
     stem = opened.path.stem.removesuffix("-rated")
-    files: dict[Path, bytes] = {}
+    files: dict[Path, Content] = {}
     if "model" in only:
-        from ifccheck.ifc.writeback import packed, rated_bytes
+        from ifccheck.ifc.writeback import packed, rated_parts
         from ifccheck.publish.property_sets import result_sets
 
-        data = packed(opened, rated_bytes(opened, result_sets(report)))
-        files[out / f"{stem}-rated{opened.path.suffix}"] = data
+        parts = rated_parts(opened, result_sets(report))
+        files[out / f"{stem}-rated{opened.path.suffix}"] = packed(opened, parts)
     if "html" in only:
         from ifccheck.publish.html import render
 
@@ -181,9 +182,9 @@ def files_of(
 
         files[out / f"{stem}-rating.csv"] = ratings_csv(report).encode("utf-8")
     if "json" in only:
-        from ifccheck.publish.json import ratings_json
+        from ifccheck.publish.json import json_pieces
 
-        files[out / f"{stem}-rating.json"] = ratings_json(report).encode("utf-8")
+        files[out / f"{stem}-rating.json"] = map(str.encode, json_pieces(report))
     return files
 
 

@@ -38,7 +38,8 @@ ALLOWED: dict[str, set[str]] = {
     "findings": {"beam"},
     "tables": RIM | {"rating"},
     "subjects": RIM | {"brief", "frame", "detailing", "rating", "standards"},
-    "results": RIM | {"brief", "ifc", "publish", "rating", "sheet", "standards", "subjects"},
+    "results": RIM
+    | {"brief", "ifc", "outputs", "publish", "rating", "sheet", "standards", "subjects"},
     "publish": RIM | {"tables", "rating", "sheet", "standards", "mechanics"},
 }
 """Who may import whom; those at the top may import all below."""

@@ -323,8 +323,8 @@ def test_rated_models_of_all_units_read_alike(tmp_path: Path) -> None:
         run = run_of(tmp_path / unit, Setting(unit=unit))  # type: ignore[arg-type]
         rated = run.rated[0]
         files = files_of(rated.read.opened, rated.report, tmp_path, ["model"])
-        (data,) = files.values()
-        file = ifcopenshell.file.from_string(data.decode("utf-8"))
+        (parts,) = files.values()
+        file = ifcopenshell.file.from_string(b"".join(parts).decode("utf-8"))
         beam = next(b for b in file.by_type("IfcBeam") if b.Name == "L-1")
         sets = {
             relation.RelatingPropertyDefinition.Name: relation.RelatingPropertyDefinition

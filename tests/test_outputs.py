@@ -5,7 +5,7 @@ from __future__ import annotations
 import errno
 import os
 import stat
-from collections.abc import Callable
+from collections.abc import Callable, Iterator
 from pathlib import Path
 from typing import Any
 
@@ -92,8 +92,8 @@ def test_failure_leaves_everything_as_it_was(
 def test_failure_while_writing(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
     """The disk fills up in the middle of the second file."""
 
-    def full(path: Path, *arguments: Any) -> Any:
-        stream = real_open(path, *arguments)
+    def full(path: Path, *arguments: Any, **options: Any) -> Any:
+        stream = real_open(path, *arguments, **options)
         if path.suffix == ".new" and len(list(tmp_path.glob(".*.new"))) == 2:
             stream.close()
             raise DISK_FULL
@@ -116,6 +116,22 @@ def test_interruption_leaves_everything_as_it_was(
     with pytest.raises(KeyboardInterrupt):
         write_all({tmp_path / "a": b"new", tmp_path / "b": b"new"})
     monkeypatch.undo()
+    assert contents(tmp_path) == {"a": b"earlier"}
+
+
+def test_contents_may_come_in_parts(tmp_path: Path) -> None:
+    write_all({tmp_path / "a": (part for part in (b"one ", memoryview(b"two"), b" three"))})
+    assert contents(tmp_path) == {"a": b"one two three"}
+
+
+def test_a_part_that_cannot_be_made_leaves_everything_as_it_was(tmp_path: Path) -> None:
+    def parts() -> Iterator[bytes]:
+        yield b"new"
+        raise ValueError("not a figure")
+
+    (tmp_path / "a").write_bytes(b"earlier")
+    with pytest.raises(ValueError, match="not a figure"):
+        write_all({tmp_path / "a": b"newer", tmp_path / "x" / "b": parts()})
     assert contents(tmp_path) == {"a": b"earlier"}
 
 

@@ -26,14 +26,19 @@ class _Block:
     sha256: str
 
 
-def with_block(source: bytes, scan: Scan, sha256: str, lines: Sequence[str]) -> bytes:
-    """Add lines, between their marks, at the end of the last DATA section."""
+def with_block(
+    source: bytes, scan: Scan, sha256: str, lines: Sequence[str]
+) -> tuple[bytes | memoryview, ...]:
+    """Add lines, between their marks, at the end of the last DATA section.
+
+    What comes of it is given in parts, as a copy of a large source would cost as much as all else.
+    """
     how = "" if scan.on_own_line else _BREAK_ADDED
     begin = _BEGIN.format(how=how, sha256=sha256)
     lead = b"" if scan.on_own_line else scan.newline
     block = scan.newline.decode().join((begin, *lines, _END, "")).encode("ascii")
     whole = memoryview(source)
-    return b"".join((whole[: scan.insertion], lead, block, whole[scan.insertion :]))
+    return whole[: scan.insertion], lead, block, whole[scan.insertion :]
 
 
 def without_intact_block(data: bytes, scan: Scan) -> bytes | None:

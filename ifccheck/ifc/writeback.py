@@ -33,14 +33,22 @@ _MEASURE_TYPES: Mapping[Measure, str] = {
 }  # fmt: skip
 
 
+Parts = tuple[bytes | memoryview, ...]
+
+
 def rated_bytes(opened: OpenedModel, sets: Sequence[ResultSet]) -> bytes:
     """Return the model with result sets added; without any, its own bytes."""
+    return b"".join(rated_parts(opened, sets))
+
+
+def rated_parts(opened: OpenedModel, sets: Sequence[ResultSet]) -> Parts:
+    """Return the same in parts, which share the bytes of the source."""
     distinct = dict.fromkeys(chain.from_iterable([result.properties for result in sets]))
     _require_sound(opened, sets, distinct)
     worthless = {item for item in distinct if not _has_value(item)}
     measures = {item.measure for item in distinct if item not in worthless}
     if not measures:
-        return opened.source
+        return (opened.source,)
     lines = _Lines(fresh_ids(opened.scan.ids))
     units = result_units(opened.file, measures, lines.add)
     owner = _owner_history(opened, lines.add)
@@ -62,9 +70,9 @@ def _without(
     return tuple(item for item in items if item not in worthless)
 
 
-def packed(opened: OpenedModel, data: bytes) -> bytes:
+def packed(opened: OpenedModel, parts: Parts) -> Parts:
     """Return what goes into the output file: an archive where the source was one."""
-    return data if opened.zipped_member is None else pack(opened.zipped_member, data)
+    return parts if opened.zipped_member is None else (pack(opened.zipped_member, b"".join(parts)),)
 
 
 def fresh_ids(used: Offsets) -> Iterator[int]:

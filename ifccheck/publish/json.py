@@ -50,11 +50,17 @@ _text = json.JSONEncoder(allow_nan=False).encode
 
 def ratings_json(report: Report) -> str:
     """Return the whole answer as JSON; the same report gives the same text."""
-    pieces: list[str] = []
+    return "".join(json_pieces(report))
+
+
+def json_pieces(report: Report) -> Iterator[str]:
+    """Return the same piece by piece, so that no more than a row of it is held at once."""
+    before = "{\n"
     for name, value in _report(report).items():
-        pieces += (",\n" if pieces else "{\n", _text(name), ": ")
-        pieces += _lines(value)
-    return "".join([*pieces, "\n}\n"])
+        yield f"{before}{_text(name)}: "
+        yield from _lines(value)
+        before = ",\n"
+    yield "\n}\n"
 
 
 def _lines(value: Any) -> Iterator[str]:
