@@ -11,12 +11,14 @@ but what it refers to beyond them knows itself used only in a file that was left
 from __future__ import annotations
 
 import string
+from collections.abc import Iterator
+from dataclasses import dataclass
 
 import numpy as np
 from numpy.typing import NDArray
 
 from ifccheck.ifc.lexer import LARGEST_ID, Scan
-from ifccheck.ifc.step_bytes import PIECE, Bytes, Offsets, places, whole_numbers
+from ifccheck.ifc.step_bytes import PIECE, Bytes, Offsets, whole_numbers
 
 Flags = NDArray[np.bool_]
 
@@ -69,59 +71,93 @@ def may_be_deferred(data: bytes, scan: Scan) -> bool:
     """Tell whether nothing wrong will be found in an instance when it is parsed."""
     if scan.names.count("DATA") != 1 or scan.hides_apostrophes or b"\0" in data:
         return False
-    array = np.frombuffer(data, np.uint8)
-    return _refers_to_its_own(array, scan) and _holds_sound_tokens(data, array, scan)
-
-
-def _body(scan: Scan) -> slice:
     (section,) = (section for section in scan.sections if section.name == "DATA")
-    return slice(section.body, section.last)
-
-
-def _in_text(scan: Scan, at: Offsets) -> Flags:
-    found: Flags = np.searchsorted(scan.apostrophes, at) % 2 == 1
-    return found
-
-
-def _refers_to_its_own(array: Bytes, scan: Scan) -> bool:
-    """Tell whether every reference leads to an instance of the file."""
-    at = places(array, _HASH[0])
-    numbers, _ = whole_numbers(array, at + 1, LARGEST_ID)
-    unknown = at[~_are_ids(numbers, scan.ids)]
-    return bool(_in_text(scan, unknown).all())
-
-
-def _are_ids(numbers: Offsets, ids: Offsets) -> Flags:
-    greatest = int(ids.max(initial=0))
-    if greatest > _TABLED_IDS:
-        return np.isin(numbers, ids)
-    is_id = np.zeros(greatest + 2, np.bool_)
-    is_id[ids] = True
-    return is_id[np.minimum(numbers, greatest + 1)]
-
-
-def _holds_sound_tokens(data: bytes, array: Bytes, scan: Scan) -> bool:
-    doubtful = _doubtful_places(data, _body(scan))
-    return (
-        doubtful is not None
-        and _stand_well(array, doubtful[~_in_text(scan, doubtful)])
-        and bool(_BEFORE_TEXT[array[scan.apostrophes[::2] - 1]].all())
+    body, array, known = slice(section.body, section.last), np.frombuffer(data, np.uint8), _Ids(scan)
+    around = (slice(0, body.start), slice(body.stop, len(data)))
+    return all(
+        _refers_to_its_own(piece, known)
+        and _quotes_well(piece)
+        and (part is not body or _holds_sound_tokens(piece, body.stop))
+        for part in (*around, body)
+        for piece in _pieces(array, scan.apostrophes, part)
     )
 
 
-def _doubtful_places(data: bytes, body: slice) -> Offsets | None:
+@dataclass(frozen=True, slots=True)
+class _Piece:
+    """A piece of the file: all is looked at in it while it is in the processor's cache."""
+
+    file: Bytes
+    """All of the file; offsets are those in it."""
+    first: int
+    stop: int
+    apostrophes: Offsets
+    """Those in the piece, and in as much behind it as the longest number may take."""
+    before: int
+    """How many apostrophes stand before the piece."""
+
+    def in_text(self, at: Offsets) -> Flags:
+        """Tell whether places of the piece are within texts."""
+        found: Flags = (self.before + np.searchsorted(self.apostrophes, at)) % 2 == 1
+        return found
+
+
+def _pieces(file: Bytes, apostrophes: Offsets, part: slice) -> Iterator[_Piece]:
+    for first in range(part.start, part.stop, PIECE):
+        stop = min(first + PIECE, part.stop)
+        before, after = np.searchsorted(apostrophes, (first, stop + _MOST_DIGITS)).tolist()
+        yield _Piece(file, first, stop, apostrophes[before:after], before)
+
+
+class _Ids:
+    """The numbers of the instances of a file."""
+
+    def __init__(self, scan: Scan) -> None:
+        self._ids = scan.ids
+        self._greatest = int(scan.ids.max(initial=0))
+        self._table: Flags | None = None
+        if self._greatest <= _TABLED_IDS:
+            self._table = np.zeros(self._greatest + 2, np.bool_)
+            self._table[scan.ids] = True
+
+    def hold(self, numbers: Offsets) -> Flags:
+        """Tell which numbers are among them."""
+        if self._table is None:
+            return np.isin(numbers, self._ids)
+        return self._table[np.minimum(numbers, self._greatest + 1)]
+
+
+def _refers_to_its_own(piece: _Piece, known: _Ids) -> bool:
+    """Tell whether every reference leads to an instance of the file."""
+    at = np.flatnonzero(piece.file[piece.first : piece.stop] == _HASH[0]) + piece.first
+    numbers, _ = whole_numbers(piece.file, at + 1, LARGEST_ID)
+    unknown = at[~known.hold(numbers)]
+    return bool(piece.in_text(unknown).all())
+
+
+def _quotes_well(piece: _Piece) -> bool:
+    """Tell whether every text begins where one may."""
+    opening = piece.apostrophes[piece.before % 2 :: 2]
+    return bool(_BEFORE_TEXT[piece.file[opening - 1]].all())
+
+
+def _holds_sound_tokens(piece: _Piece, end: int) -> bool:
+    """Tell whether all tokens are sound; ``end``: where the last token of the file may end."""
+    doubtful = _doubtful_places(piece, end)
+    return doubtful is not None and _stand_well(piece.file, doubtful[~piece.in_text(doubtful)])
+
+
+def _doubtful_places(piece: _Piece, end: int) -> Offsets | None:
     """Return where a byte cannot stand, or needs a closer look, unless it is part of a text.
 
     None where a number may be too long.
     """
-    found = [np.zeros(0, np.int64)]
-    for first in range(body.start, body.stop, PIECE):
-        piece = data[first : min(first + PIECE + _MOST_DIGITS, body.stop)].translate(_CODES)
-        if _LONG_NUMBER in piece:
-            return None
-        codes = np.frombuffer(piece, np.uint8)
-        found += [_wrongly_following(codes[: PIECE + 1]) + first, _second_points(codes) + first]
-    return np.concatenate(found)
+    first, size = piece.first, piece.stop - piece.first
+    text = piece.file[first : min(piece.stop + _MOST_DIGITS, end)].tobytes().translate(_CODES)
+    if _LONG_NUMBER in text:
+        return None
+    codes = np.frombuffer(text, np.uint8)
+    return np.concatenate((_wrongly_following(codes[: size + 1]), _second_points(codes))) + first
 
 
 def _wrongly_following(codes: Bytes) -> Offsets:
