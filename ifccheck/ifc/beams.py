@@ -5,7 +5,6 @@ from __future__ import annotations
 import re
 from collections.abc import Callable
 from dataclasses import dataclass, field, replace
-from functools import lru_cache
 
 from ifccheck.beam import Beam, Box, Opening, OutOfScope, Reason, Remark, Run
 from ifccheck.ifc.concretes import Concretes
@@ -313,12 +312,7 @@ def _doubt_density(clues: Clues, doubts: _Doubts) -> None:
 
 def _first(speaks: Callable[[str], bool], clues: Clues) -> str:
     """The first of the names of materials, then of the beam's own, that speaks of something."""
-    return _first_of(speaks, clues.definition.names) or _first_of(speaks, clues.names)
-
-
-@lru_cache(maxsize=1024)
-def _first_of(speaks: Callable[[str], bool], names: tuple[str, ...]) -> str:
-    return next(filter(speaks, names), "")
+    return next(filter(speaks, (*clues.definition.names, *clues.names)), "")
 
 
 def _count(number: int, noun: str) -> str:

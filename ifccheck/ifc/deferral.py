@@ -72,7 +72,11 @@ def may_be_deferred(data: bytes, scan: Scan) -> bool:
     if scan.names.count("DATA") != 1 or scan.hides_apostrophes or b"\0" in data:
         return False
     (section,) = (section for section in scan.sections if section.name == "DATA")
-    body, array, known = slice(section.body, section.last), np.frombuffer(data, np.uint8), _Ids(scan)
+    body, array, known = (
+        slice(section.body, section.last),
+        np.frombuffer(data, np.uint8),
+        _Ids(scan),
+    )
     around = (slice(0, body.start), slice(body.stop, len(data)))
     return all(
         _refers_to_its_own(piece, known)

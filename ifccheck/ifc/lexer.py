@@ -66,6 +66,8 @@ class Scan:
     """Instance numbers in the order of the file."""
     starts: Offsets
     """Offset of each instance's ``#``."""
+    bodies: Offsets
+    """Offset after each instance's number."""
     stops: Offsets
     """Offset after each instance's ``;``."""
     schemas: tuple[str, ...]
@@ -99,13 +101,14 @@ def scan(data: bytes) -> Scan:
     schemas, sections = _read_sections(words)
     starts, stops = starts[is_instance], stops[is_instance]
     _require_inside(starts, sections, plain)
-    ids = _instance_ids(array, starts)
+    ids, bodies = _instance_ids(array, starts)
     _require_unique(ids)
     insertion, on_own_line = _insertion(data, sections)
     newline = _newline(data, insertion if on_own_line else 0)
     return Scan(
         ids=ids,
         starts=starts,
+        bodies=bodies,
         stops=stops,
         schemas=schemas,
         sections=sections,
@@ -230,8 +233,9 @@ def _is_blank(values: Bytes) -> NDArray[np.bool_]:
     return blank
 
 
-def _instance_ids(array: Bytes, starts: Offsets) -> Offsets:
-    """Read the number after each ``#``, and require an equals sign after it."""
+def _instance_ids(array: Bytes, starts: Offsets) -> tuple[Offsets, Offsets]:
+    """Read the number after each ``#``, and require an equals sign after it; returns also where
+    each number ends."""
     at = _past_blanks(array, starts + 1)
     ids, stops = whole_numbers(array, at, LARGEST_ID)
     has_equals = array[_past_blanks(array, stops)] == _EQUALS
@@ -241,7 +245,7 @@ def _instance_ids(array: Bytes, starts: Offsets) -> Offsets:
             f"has an instance that cannot be read at byte {starts[bad]}: {instance} "
             f"(numbers run from 1 to {LARGEST_ID}); {EXPORT_AGAIN}"
         )
-    return ids
+    return ids, stops
 
 
 def shown(text: bytes) -> str:

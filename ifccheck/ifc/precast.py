@@ -31,6 +31,12 @@ def _speaks_of_precast(name: str) -> bool:
     return PRECAST.search(name) is not None
 
 
+@lru_cache(maxsize=1024)
+def _says_made_elsewhere(said: str) -> bool:
+    """Whether what is said of how a member is made means that it is not made in its place."""
+    return PRECAST.search(said) is not None or MADE_ELSEWHERE.search(said) is not None
+
+
 def told_precast(context: Context, step_id: int, clues: Clues, sets: Sets) -> str:
     """Return what tells that a member is precast; empty where nothing does."""
     for name in (*clues.definition.names, *clues.names):
@@ -44,7 +50,7 @@ def told_precast(context: Context, step_id: int, clues: Clues, sets: Sets) -> st
         if (value := general.get(name)) is None:
             continue
         said = str(value.value)
-        if PRECAST.search(said) or MADE_ELSEWHERE.search(said):
+        if _says_made_elsewhere(said):
             return f"{GENERAL}.{name} {said}"
     for whole in map(context.file.by_id, context.relations.ancestors(step_id)):
         if get(whole, "AssemblyPlace") == "FACTORY":

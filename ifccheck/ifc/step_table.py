@@ -18,7 +18,6 @@ from ifccheck.ifc.lexer import Scan
 from ifccheck.ifc.step_bytes import Offsets, stretches
 from ifccheck.ifc.step_cursors import IS_BLANK, WORD, Bytes, Cursors
 
-_POWERS_OF_TEN = 10 ** np.arange(10)
 _HIDDEN_QUOTE = re.compile(rb"\\S\\'")
 _LOWER = np.uint8(0x20)
 """What tells a small letter from a capital."""
@@ -34,16 +33,16 @@ class StepTable:
     """The statements of a file by number."""
 
     def __init__(
-        self, data: bytes, ids: Offsets, starts: Offsets, stops: Offsets, hides: bool = False
+        self, data: bytes, ids: Offsets, bodies: Offsets, stops: Offsets, hides: bool = False
     ) -> None:
         self._data = data
         self._hides = hides
         """Whether statements of the file are left out."""
         self._bytes = np.frombuffer(data, np.uint8)
-        order = np.argsort(ids, kind="stable")
-        self._ids, self._starts, self._stops = ids[order], starts[order], stops[order]
-        digits = np.searchsorted(_POWERS_OF_TEN, self._ids, side="right")
-        self._after_numbers = self._starts + 1 + digits
+        if not (ids[1:] > ids[:-1]).all():
+            order = np.argsort(ids, kind="stable")
+            ids, bodies, stops = ids[order], bodies[order], stops[order]
+        self._ids, self._after_numbers, self._stops = ids, bodies, stops
         self._row_of = self._direct()
 
     def _direct(self) -> Ints | None:
@@ -183,5 +182,6 @@ def make_step_table(data: bytes, scan: Scan) -> StepTable | None:
         plain[row[(row >= 0) & (at < scan.stops[row])]] = False
     if not plain.any():
         return None
-    columns = (scan.ids[plain], scan.starts[plain], scan.stops[plain])
-    return StepTable(data, *columns, hides=not plain.all())
+    hides = not plain.all()
+    kept = plain if hides else slice(None)
+    return StepTable(data, scan.ids[kept], scan.bodies[kept], scan.stops[kept], hides)
