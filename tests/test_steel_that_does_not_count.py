@@ -77,6 +77,20 @@ def test_ties_copied_do_not_strengthen(along: float, wider: float, tmp_path: Pat
     assert resistance(answer, "Shear") == pytest.approx(resistance(plain, "Shear"), rel=1e-6)
 
 
+@pytest.mark.parametrize(("along", "wider", "told"), [(13.0, 0.0, True), (13.0, -60.0, False)])
+def test_ties_drawn_side_by_side_are_told(
+    along: float, wider: float, told: bool, tmp_path: Path
+) -> None:
+    """Doubled stirrups are good practice, and a copy that was moved a little looks like them; an
+    inner stirrup beside an outer one does not."""
+    copy = Ties("10M", tuple(x + along for x in PLACES), 105.0 + wider, 40.0, 560.0)
+    answer = rated(tmp_path / "doubled", (BOTTOM, TOP), (LINKS, copy))
+    doubts = [remark["text"] for remark in answer["remarks"]]
+    assert any("stand side by side at one place" in text for text in doubts) == told
+    legs = [item["value"] for item in answer["basis"] if item["name"] == "Stirrups"]
+    assert any("4 legs" in str(value) for value in legs)
+
+
 def test_bars_beside_the_web_of_a_tee_leave_it_unrated(tmp_path: Path) -> None:
     outline = tee(300.0, 600.0, 1200.0, 150.0)
     beside = Layer("25M", 60.0, (-500.0, -400.0, 400.0, 500.0), 40.0, 6260.0)

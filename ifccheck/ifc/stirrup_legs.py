@@ -76,6 +76,9 @@ class Doubled:
     """Of each stirrup at each level (T, 3)."""
     pairs: Ints
     """Stirrups with such legs where it matters to their number (Q, 2)."""
+    beside: Ints
+    """Stirrups with a leg beside a like one of another, along the beam: at one place, but not in
+    one another (S)"""
 
 
 @dataclass(frozen=True, slots=True)
@@ -109,17 +112,26 @@ def legs_in_one_another(legs: Legs, ties: Standing) -> Doubled:
     stirrup, leg, group = stirrup[order], leg[order], group[order]
     along, thick = ties.x[stirrup] + legs.x[leg], ties.diameter[stirrup]
     left_out: set[int] = set()
+    beside: set[int] = set()
     pairs = []
-    for one, other in _near_pairs(group, legs.y[leg], along, thick):
+    for one, other, in_one in _near_pairs(group, legs.y[leg], along, thick):
         if one in left_out or other in left_out:
             continue
         first, second = int(stirrup[one]), int(stirrup[other])
+        if not in_one:
+            if legs.level[leg[one]] != 1 and first != second:
+                beside |= {first, second}
+            continue
         out = one if ties.gives(first) > ties.gives(second) else other
         left_out.add(out)
         counts[stirrup[out], legs.level[leg[out]]] += 1
         if legs.level[leg[out]] != 1 and first != second:
             pairs.append((min(first, second), max(first, second)))
-    return Doubled(counts, np.array(pairs, dtype=np.intp).reshape(-1, 2))
+    return Doubled(
+        counts,
+        np.array(pairs, dtype=np.intp).reshape(-1, 2),
+        np.array(sorted(beside), dtype=np.intp),
+    )
 
 
 def overlap_themselves(legs: Legs, diameter: Floats) -> Bools:
@@ -128,7 +140,7 @@ def overlap_themselves(legs: Legs, diameter: Floats) -> Bools:
     group = legs.shape * len(LEVELS) + legs.level
     found = np.zeros(len(diameter), dtype=bool)
     pairs = _near_pairs(group, legs.y, legs.x, diameter[legs.shape])
-    found[legs.shape[np.array([one for one, _ in pairs], dtype=np.intp)]] = True
+    found[legs.shape[np.array([one for one, _, in_one in pairs if in_one], dtype=np.intp)]] = True
     return found
 
 
@@ -141,9 +153,10 @@ def _legs_of(legs: Legs, shape: Ints) -> tuple[Ints, Ints]:
     return stirrup, first[shape[stirrup]] + within
 
 
-def _near_pairs(group: Ints, y: Floats, x: Floats, diameter: Floats) -> list[tuple[int, int]]:
-    """Pairs in one group, sorted by y in each, that are nearer than bars can lie, y and x."""
-    found: list[tuple[int, int]] = []
+def _near_pairs(group: Ints, y: Floats, x: Floats, diameter: Floats) -> list[tuple[int, int, bool]]:
+    """Pairs in one group, sorted by y in each, that are nearer across the beam than bars can lie,
+    and whether they are along it too."""
+    found: list[tuple[int, int, bool]] = []
     first = np.arange(len(group))
     widest = TOUCHING * float(diameter.max(initial=0.0))
     for step in range(1, len(group)):
@@ -155,8 +168,9 @@ def _near_pairs(group: Ints, y: Floats, x: Floats, diameter: Floats) -> list[tup
         if not first.size:
             break
         reach = TOUCHING * (diameter[first] + diameter[other]) / 2.0
-        near = (apart < reach) & (np.abs(x[first] - x[other]) < reach)
-        found.extend(zip(first[near].tolist(), other[near].tolist(), strict=True))
+        near, in_one = apart < reach, np.abs(x[first] - x[other]) < reach
+        columns = (first[near].tolist(), other[near].tolist(), in_one[near].tolist())
+        found.extend(zip(*columns, strict=True))
     return found
 
 

@@ -35,6 +35,10 @@ SHORT = (
     "its legs do not run through the height of the section and are not counted"
 )
 TWICE = "have legs in one another, as if modelled twice: counted once"
+BESIDE = (
+    "stand side by side at one place, so near that no concrete comes between them: all their legs"
+    " are counted, as of stirrups that are meant to be doubled"
+)
 LONELY = "the only stirrup: not counted"
 
 
@@ -97,6 +101,7 @@ def _served(
     counts[looked] -= doubled.counts
     for pair in looked[doubled.pairs]:
         model.remark(ties.row[pair], TWICE)
+    model.remark(ties.row[looked[doubled.beside]], BESIDE)
     left_out = np.where(serves, counts, 0).max(axis=1) == 0
     left_out &= np.where(serves, ties.legs, 0).max(axis=1) > 0
     return replace(ties, legs=np.where(serves, counts, 0)), np.flatnonzero(~left_out)
