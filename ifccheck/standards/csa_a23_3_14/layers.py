@@ -8,8 +8,8 @@ import numpy as np
 
 from ifccheck.mechanics.arrays import ANCHOR_FULL, ANCHOR_HOOK, OWN, Floats, Ints, Members
 from ifccheck.standards.csa_a23_3_14 import development
-from ifccheck.standards.csa_a23_3_14.faces import Layers
 from ifccheck.standards.csa_a23_3_14.materials import GREATEST_YIELD
+from ifccheck.standards.csa_a23_3_14.section_states import Layers
 
 
 def with_bars(members: Members, farthest: int) -> Members:

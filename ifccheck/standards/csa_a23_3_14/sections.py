@@ -29,14 +29,12 @@ from ifccheck.standards.csa_a23_3_14.critical import (
 )
 from ifccheck.standards.csa_a23_3_14.faces import (
     FaceState,
-    Layers,
-    SectionState,
     sagging_and_hogging,
     soffit_steel,
-    take_rows,
     top_steel,
 )
 from ifccheck.standards.csa_a23_3_14.layers import layers_of, with_bars
+from ifccheck.standards.csa_a23_3_14.section_states import Layers, SectionState, take_rows
 
 AT_ONCE = 65536
 """Stations worked on together, so that their arrays stay in the processor's cache."""
