@@ -218,29 +218,22 @@ def _near_change(one: Measured, changes: Sequence[float]) -> Iterator[str]:
 
 
 def _near_load(one: Measured, loads: Sequence[Load]) -> Iterator[str]:
-    reach = BESIDE * one.depth - NOTHING
-    near = {
-        load.origin
-        for load in loads
-        if load.start < one.opening.end + reach
-        and load.end > one.opening.start - reach
-        and (load.kind != "line" or load.end - load.start < one.depth)
-    }
+    near = {load.origin for load in loads if _is_concentrated_beside(one, load)}
     if near:
         yield f"a concentrated load stands within half a depth of it ({', '.join(sorted(near))})"
 
 
 def _near_member(one: Measured, resting: Sequence[Contact]) -> Iterator[str]:
-    reach = BESIDE * one.depth - NOTHING
-    near = {
-        contact.other
-        for contact in resting
-        if contact.start < one.opening.end + reach
-        and contact.end > one.opening.start - reach
-        and contact.end - contact.start < one.depth
-    }
+    near = {contact.other for contact in resting if _is_concentrated_beside(one, contact)}
     if near:
         yield f"within half a depth of it a member meets the beam ({', '.join(sorted(near))})"
+
+
+def _is_concentrated_beside(one: Measured, what: Load | Contact) -> bool:
+    """Whether something acts within half a depth of an opening, on less than a depth."""
+    reach = BESIDE * one.depth - NOTHING
+    near = what.start < one.opening.end + reach and what.end > one.opening.start - reach
+    return near and what.end - what.start < one.depth
 
 
 def _near_others(one: Measured, everyone: Sequence[Measured]) -> Iterator[str]:
