@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 
@@ -11,19 +11,21 @@ from ifccheck.beam import Span, SupportKind
 from ifccheck.mechanics.arrays import Bools, Floats, Ints
 
 FREE, PINNED, FIXED = 0, 1, 2
+CONTINUOUS = 3
+"""A supported end beyond which its line goes on, or at which springs hold it"""
 
 _KIND_CODES: Mapping[SupportKind, int] = {"free": FREE, "pinned": PINNED, "fixed": FIXED}
 
 
 @dataclass(frozen=True, slots=True)
 class SpanTable:
-    """One single span per beam (B)."""
+    """One span per row (B)."""
 
     start: Floats
     """x of the support, or of the tip at a free end [mm] (B)"""
     end: Floats
     start_kind: Ints
-    """FREE, PINNED or FIXED (B)"""
+    """FREE, PINNED, FIXED or, where a line holds it, CONTINUOUS (B)"""
     end_kind: Ints
 
     @property
@@ -67,7 +69,33 @@ def require_standing(spans: SpanTable) -> None:
 
 
 def stands(start_kind: Ints, end_kind: Ints) -> Bools:
-    """Whether a pair of end supports holds a span: two supports, or one that is fixed."""
+    """Whether a pair of end supports holds a span: two supports, or one that can hold a moment."""
     held: Bools = (start_kind != FREE) & (end_kind != FREE)
-    held |= (start_kind == FIXED) | (end_kind == FIXED)
+    for kind in (FIXED, CONTINUOUS):
+        held |= (start_kind == kind) | (end_kind == kind)
     return held
+
+
+def between_supports(spans: SpanTable) -> Bools:
+    """Whether both ends of a span are supported (B)."""
+    return np.asarray((spans.start_kind != FREE) & (spans.end_kind != FREE))
+
+
+def in_line(spans: SpanTable) -> Bools:
+    """Whether a span has an end that only its line can hold (B)."""
+    return np.asarray((spans.start_kind == CONTINUOUS) | (spans.end_kind == CONTINUOUS))
+
+
+def alone(spans: SpanTable) -> SpanTable:
+    """The spans without the lines that hold them: those that go on are simple between two
+    supports, and fixed at the support where the other end is free."""
+    joined = in_line(spans)
+    if not joined.any():
+        return spans
+    simple = joined & between_supports(spans)
+
+    def kind(given: Ints) -> Ints:
+        rooted = np.where(joined & (given == CONTINUOUS), FIXED, given)
+        return np.where(simple, PINNED, rooted)
+
+    return replace(spans, start_kind=kind(spans.start_kind), end_kind=kind(spans.end_kind))

@@ -1,4 +1,4 @@
-"""Exact moment, shear and deflection of single spans, for every case at every station.
+"""Exact moment, shear and deflection of spans, for every case at every station.
 
 Four constants per span (reaction, moment, slope and deflection at its start) follow from what
 all its loads do about its end and from how its two ends are held; the rest is the sum of the
@@ -13,7 +13,7 @@ import numpy as np
 
 from ifccheck.analysis.brackets import Brackets, Sections, sum_brackets
 from ifccheck.analysis.loads import LINE, MOMENT, POINT, LoadTable, join_loads
-from ifccheck.analysis.spans import FIXED, FREE, PINNED, SpanTable, require_standing
+from ifccheck.analysis.spans import FIXED, FREE, PINNED, SpanTable, alone, require_standing
 from ifccheck.analysis.stations import SAME_PLACE, StationTable
 from ifccheck.mechanics.arrays import Bools, Floats, Ints
 
@@ -46,7 +46,7 @@ class CaseEffects:
 
 
 @dataclass(frozen=True, slots=True)
-class _Start:
+class Start:
     """Reaction, moment, slope and deflection (times EI, downward) at the start of a span,
     before what acts there (K, B)."""
 
@@ -116,7 +116,7 @@ class Solved:
     """With x from the start of their span, none beyond a supported end"""
     totals: Brackets
     """What all loads of each case do about the end of each span (K, B)"""
-    start: _Start
+    start: Start
     force_scale: Floats
     """Sum of the sizes of each case's loads on each beam, as a force [N] (K, B)"""
     moment_scale: Floats
@@ -124,13 +124,15 @@ class Solved:
 
 
 def solve(spans: SpanTable, loads: LoadTable, cases: int) -> Solved:
-    """Find the reactions of every span; parameters as for ``case_effects``."""
+    """Find the reactions of every span; parameters as for ``case_effects``.
+
+    Spans of lines stand alone here (see ``spans.alone``): ``lines.continuous`` joins them.
+    """
     require_standing(spans)
     local = _within_spans(spans, loads)
     totals = sum_brackets(local, _span_ends(spans), cases)
-    return Solved(
-        spans, local, totals, _start_constants(spans, totals), *_load_scales(spans, local, cases)
-    )
+    start = _start_constants(alone(spans), totals)
+    return Solved(spans, local, totals, start, *_load_scales(spans, local, cases))
 
 
 def effects_at(solved: Solved, stations: StationTable, deflections: bool = True) -> CaseEffects:
@@ -161,7 +163,7 @@ def with_end_moments(solved: Solved, start: Floats, end: Floats, varying: Bools)
     Deflections are those of one stiffness along the span: of ``varying`` spans (B) they are nan.
     """
     turned = np.where(varying, np.nan, 0.0)
-    constants = _Start(
+    constants = Start(
         reaction=solved.start.reaction + (end - start) / solved.spans.length,
         moment=solved.start.moment + start,
         slope=solved.start.slope + turned,
@@ -228,7 +230,7 @@ def _sections(spans: SpanTable, stations: StationTable) -> Sections:
     return Sections(stations.first_rows(len(spans.start)), x, right)
 
 
-def _start_constants(spans: SpanTable, totals: Brackets) -> _Start:
+def _start_constants(spans: SpanTable, totals: Brackets) -> Start:
     """Constants at the start of each span from the conditions at its two ends (K, B)."""
     length = spans.length
     force, moment, slope, deflection = totals.force, totals.moment, totals.slope, totals.deflection
@@ -258,7 +260,7 @@ def _start_constants(spans: SpanTable, totals: Brackets) -> _Start:
     )
     free_near = spans.start_kind == FREE
     start_deflection = np.where(free_near, slope * length - deflection, 0.0)
-    return _Start(reaction, start_moment, start_slope, start_deflection)
+    return Start(reaction, start_moment, start_slope, start_deflection)
 
 
 def _by_pair(
@@ -287,7 +289,7 @@ def _by_pair(
 
 
 def _along(
-    spans: SpanTable, stations: StationTable, start: _Start, left: Brackets
+    spans: SpanTable, stations: StationTable, start: Start, left: Brackets
 ) -> tuple[Floats, Floats]:
     """Moment and shear at every station (K, N)."""
     beam = stations.beam
@@ -301,7 +303,7 @@ def _along(
     return moment, reaction
 
 
-def _deflection(spans: SpanTable, stations: StationTable, start: _Start, left: Brackets) -> Floats:
+def _deflection(spans: SpanTable, stations: StationTable, start: Start, left: Brackets) -> Floats:
     """Deflection at every station (K, N)."""
     beam = stations.beam
     s = stations.x - spans.start[beam]
@@ -377,7 +379,7 @@ def _without_noise(
     return effect
 
 
-def _end_moments(spans: SpanTable, loads: LoadTable, start: _Start, totals: Brackets) -> Floats:
+def _end_moments(spans: SpanTable, loads: LoadTable, start: Start, totals: Brackets) -> Floats:
     """Moment just inside both ends of each span: without the moment loads at the end (K, B, 2)."""
     at_start = _moments_at(spans, loads, np.abs(loads.start) <= SAME_PLACE, totals)
     near_end = np.abs(loads.start - spans.length[loads.beam]) <= SAME_PLACE

@@ -6,7 +6,7 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from ifccheck.analysis.spans import FIXED, FREE, SpanTable
+from ifccheck.analysis.spans import FIXED, SpanTable, between_supports, in_line
 from ifccheck.analysis.statics import Solved, moments_at, with_end_moments
 from ifccheck.analysis.stations import SAME_PLACE, StationTable
 from ifccheck.mechanics.arrays import Bools, Floats, Ints
@@ -28,9 +28,8 @@ class Curvature:
 
 def indeterminate(spans: SpanTable) -> Bools:
     """Whether moments of a span depend on how its stiffness varies (B)."""
-    first, last = spans.start_kind, spans.end_kind
-    fixed: Bools = (first == FIXED) | (last == FIXED)
-    return np.asarray(fixed & (first != FREE) & (last != FREE))
+    fixed: Bools = (spans.start_kind == FIXED) | (spans.end_kind == FIXED)
+    return np.asarray((fixed | in_line(spans)) & between_supports(spans))
 
 
 def places_between(stations: StationTable) -> tuple[Ints, Floats, Floats]:
@@ -69,12 +68,36 @@ def with_varying_stiffness(solved: Solved, curvature: Curvature) -> Solved:
     solved
         Spans (B) solved for one stiffness along each.
     curvature
-        Of the spans whose stiffness varies, statically indeterminate ones.
+        Of the spans whose stiffness varies, statically indeterminate ones; those of lines are
+        left to ``lines.continuous``.
 
     References
     ----------
     First principles: the unit load theorem.
     """
+    turns = end_turns(solved, curvature)
+    varying = turns.near > 0.0
+    return with_end_moments(solved, *_end_moments(solved.spans, turns), varying)
+
+
+@dataclass(frozen=True, slots=True)
+class EndTurns:
+    """How the two ends of spans turn where stiffness varies; 0 for all other spans."""
+
+    near: Floats
+    """int (1 - s/L)^2 / EI ds: what a unit moment at the start turns the start (B)"""
+    across: Floats
+    """int (1 - s/L) (s/L) / EI ds (B)"""
+    far: Floats
+    """int (s/L)^2 / EI ds (B)"""
+    start: Floats
+    """int M (1 - s/L) / EI ds (K, B)"""
+    end: Floats
+    """int M (s/L) / EI ds (K, B)"""
+
+
+def end_turns(solved: Solved, curvature: Curvature) -> EndTurns:
+    """Sum curvature along spans (B) whose stiffness varies, for every case (K)."""
     spans, beams = solved.spans, len(solved.spans.start)
     moment = moments_at(
         solved, StationTable(curvature.beam, curvature.x, np.zeros_like(curvature.beam))
@@ -86,18 +109,15 @@ def with_varying_stiffness(solved: Solved, curvature: Curvature) -> Solved:
         sums = np.bincount(curvature.beam, weights=each, minlength=beams)
         return sums.astype(np.float64, copy=False)
 
-    both = [np.array([summed(one * flexible * m) for m in moment]) for one in (near, far)]
-    matrix = summed(near**2 * flexible), summed(near * far * flexible), summed(far**2 * flexible)
-    varying = matrix[0] > 0.0
-    return with_end_moments(solved, *_end_moments(spans, matrix, both[0], both[1]), varying)
+    start, end = (np.array([summed(one * flexible * m) for m in moment]) for one in (near, far))
+    across = summed(near * far * flexible)
+    return EndTurns(summed(near**2 * flexible), across, summed(far**2 * flexible), start, end)
 
 
-def _end_moments(
-    spans: SpanTable, matrix: tuple[Floats, Floats, Floats], start: Floats, end: Floats
-) -> tuple[Floats, Floats]:
+def _end_moments(spans: SpanTable, turns: EndTurns) -> tuple[Floats, Floats]:
     """What must be added at the two ends so that those which are fixed do not turn (K, B)."""
-    near, across, far = matrix
-    known = near > 0.0
+    near, across, far, start, end = turns.near, turns.across, turns.far, turns.start, turns.end
+    known = (near > 0.0) & ~in_line(spans)
     at_start, at_end = known & (spans.start_kind == FIXED), known & (spans.end_kind == FIXED)
     both = at_start & at_end
     determinant = np.where(known, near * far - across**2, 1.0)
