@@ -74,8 +74,7 @@ class Remark(NamedTuple):
     kind: RemarkKind = "note"
 
 
-@dataclass(frozen=True, slots=True)
-class Reason:
+class Reason(NamedTuple):
     """Why a beam is not rated. ``blocking``: nothing can be computed at all;
     otherwise a utilisation above 1 still makes the beam fall short."""
 
@@ -83,8 +82,7 @@ class Reason:
     blocking: bool = True
 
 
-@dataclass(frozen=True, slots=True)
-class Given:
+class Given(NamedTuple):
     """A number with the place that it came from; ``assumed`` where a default was used."""
 
     value: float
@@ -104,8 +102,7 @@ class Axis:
     length: float
 
 
-@dataclass(frozen=True, slots=True)
-class Outline:
+class Outline(NamedTuple):
     """A section's outline: the outer ring, then any voids; points (y, z) [mm].
 
     Where an opening divides it, several outer rings; what lies in an odd number of rings is

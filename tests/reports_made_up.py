@@ -491,7 +491,7 @@ def hostile_report() -> Report:
 def _spoilt(rating: Rating) -> Rating:
     return replace(
         rating,
-        reasons=tuple(replace(reason, text=HOSTILE[1]) for reason in rating.reasons),
+        reasons=tuple(reason._replace(text=HOSTILE[1]) for reason in rating.reasons),
         remarks=tuple(Remark(rating.beam, "read", text, "doubt") for text in HOSTILE),
         basis=tuple(item._replace(source=HOSTILE[2]) for item in rating.basis),
     )

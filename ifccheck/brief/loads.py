@@ -63,7 +63,7 @@ def _load(
     brief: Brief, entry: LoadEntry, beam: Beam, span: Span | None, contacts: Sequence[Contact]
 ) -> Load:
     stretch = _stretch(brief, entry, beam, span, contacts)
-    projection = _projection(entry, beam)
+    projection = _projection(beam) if entry.projected else 1.0
     first, last = entry.values[0] * projection, entry.values[1] * projection
     return Load(
         beam=beam.key,
@@ -83,9 +83,9 @@ def _as_seen_from_start(entry: LoadEntry, first: float, last: float) -> tuple[fl
     return (-first, -last) if entry.kind == "moment" else (last, first)
 
 
-def _projection(entry: LoadEntry, beam: Beam) -> float:
-    """Horizontal length per length of axis, for a projected load."""
-    if not entry.projected or beam.axis is None:
+def _projection(beam: Beam) -> float:
+    """Horizontal length per length of axis."""
+    if beam.axis is None:
         return 1.0
     return math.hypot(beam.axis.x[0], beam.axis.x[1])
 

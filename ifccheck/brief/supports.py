@@ -14,6 +14,7 @@ from ifccheck.units import clipped, show
 
 End = Literal["start", "end"]
 Supports = tuple[Support, Support]
+_BEARINGS: Mapping[End, str] = {"start": "start_bearing", "end": "end_bearing"}
 
 STANDING_PAIRS = frozenset(
     {
@@ -176,11 +177,12 @@ def _told_at(brief: Brief, place: str) -> str:
 def _end(
     brief: Brief, end: End, said: Mapping[str, Said], contacts: Sequence[Contact]
 ) -> Support | Reason:
-    bearing = said[f"{end}_bearing"].value if f"{end}_bearing" in said else 0.0
+    width = said.get(_BEARINGS[end])
+    bearing = width.value if width else 0.0
     if end in said:
         kind, source = said[end].value, f"brief, {said[end].place}"
         return Support(kind, 0.0 if kind == "free" else bearing, source)
-    if reason := _nothing_holds(end, [contact for contact in contacts if contact.place == end]):
+    if reason := _nothing_holds(end, contacts):
         return reason
     if brief.defaults.supports is None:
         return Reason(
@@ -194,9 +196,9 @@ def _by_default(kind: SupportKind, bearing: float) -> Support:
     return Support(kind, bearing, DEFAULT)
 
 
-def _nothing_holds(end: End, touching: Sequence[Contact]) -> Reason | None:
+def _nothing_holds(end: End, contacts: Sequence[Contact]) -> Reason | None:
     """Why none of what touches an end can be counted on to hold it; None where one can."""
-    seats = [c for c in touching if c.bears and c.side in ("below", "end")]
+    seats = [c for c in contacts if c.place == end and c.bears and c.side in ("below", "end")]
     if any(not contact.doubt for contact in seats):
         return None
     unsure = "; ".join(sorted({f"{contact.other}: {contact.doubt}" for contact in seats}))
@@ -209,13 +211,18 @@ def _nothing_holds(end: End, touching: Sequence[Contact]) -> Reason | None:
 DEFAULT = "brief, defaults.supports"
 
 
+@lru_cache(maxsize=16)
+def _taken_as(end: End, kind: SupportKind) -> str:
+    return f"{end} taken as {kind}, the brief's default"
+
+
 def _remarks(key: str, supports: Supports | Reason, said: Mapping[str, Said]) -> list[Remark]:
     if isinstance(supports, Reason):
         return []
     remarks = []
-    for end, support in zip(("start", "end"), supports, strict=True):
+    for end, support in zip(_BEARINGS, supports, strict=True):
         if support.source == DEFAULT:
-            text = f"{end} taken as {support.kind}, the brief's default"
+            text = _taken_as(end, support.kind)
             remarks.append(Remark(key, "supports", text, "assumption"))
         elif support.kind == "fixed":
             text = f"{end} is fixed because {said[end].place} of the brief says so"

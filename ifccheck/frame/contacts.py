@@ -13,6 +13,7 @@ import math
 from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass
 from functools import lru_cache
+from itertools import repeat
 from typing import Literal
 
 import numpy as np
@@ -289,24 +290,22 @@ def _contacts(spanning: _Spanning, neighbours: _Neighbours, touches: _Touches) -
     for place, there in _places(touches, above | beside).items():
         rows = np.flatnonzero(there & ~hidden)
         sides = np.minimum(side, 2) if place == "between" else side
-        columns = (touches.beam, touches.other, start, end, sides, beyond[place], bears)
-        for own, other, low, high, which, past, may_hold in zip(
-            *(column[rows].tolist() for column in columns), strict=True
-        ):
-            member = neighbours.members[other]
-            yield Contact(
-                beam=spanning.keys[own],
-                other=neighbours.told[other],
-                other_class=member.ifc_class,
-                start=low,
-                end=high,
-                place=place,
-                side=_SIDES[which],
-                other_step=member.step_id,
-                beyond=max(0.0, past),
-                bears=may_hold,
-                doubt=member.doubt,
-            )
+        others = touches.other[rows].tolist()
+        members = [neighbours.members[other] for other in others]
+        yield from map(
+            Contact,
+            [spanning.keys[own] for own in touches.beam[rows].tolist()],
+            [neighbours.told[other] for other in others],
+            [member.ifc_class for member in members],
+            start[rows].tolist(),
+            end[rows].tolist(),
+            repeat(place),
+            [_SIDES[which] for which in sides[rows].tolist()],
+            [member.step_id for member in members],
+            np.fmax(beyond[place][rows], 0.0).tolist(),
+            bears[rows].tolist(),
+            [member.doubt for member in members],
+        )
 
 
 def _sides(touches: _Touches) -> tuple[Bools, Bools, Bools]:

@@ -22,10 +22,11 @@ from numpy.typing import NDArray
 
 from ifccheck.beam import Axis, Beam, Flange, Member, Outline, Ring, Run, Slab
 from ifccheck.frame.along import varies
+from ifccheck.frame.boxes import extent_of
 from ifccheck.frame.contacts import kind_of
 from ifccheck.frame.figures import figure_of, narrowest
 from ifccheck.frame.reaches import NextWeb, Plan, Reach, Side, apart, bridged, reaches, spread
-from ifccheck.frame.webs import Web, web_of, webs_of
+from ifccheck.frame.webs import Web, levels_of, ring_of, webs_of
 
 if TYPE_CHECKING:
     from shapely import STRtree
@@ -96,9 +97,8 @@ class Slabs:
     @cached_property
     def _named(self) -> dict[str, tuple[str, ...]]:
         slabs = [one for one in self._members if kind_of(one.ifc_class) == "IfcSlab"]
-        plates = [web_of(slab) for slab in slabs]
-        plans = [(plate.ring,) for plate in plates]
-        heights = [(plate.low, plate.high) for plate in plates]
+        plans = [(ring_of(slab.box),) for slab in slabs]
+        heights = [levels_of(slab.box) for slab in slabs]
         return {
             key: tuple(dict.fromkeys(_called(slabs[row]) for row in rows))
             for key, rows in _near(self._level, plans, heights).items()
@@ -185,13 +185,13 @@ def _polygons(plans: Sequence[Plan]) -> NDArray[np.object_]:
 def _place(beam: Beam) -> tuple[list[tuple[float, float]], tuple[float, float]]:
     """The rectangle that a beam covers in plan, a little grown, and its soffit and top."""
     assert beam.axis is not None
-    points = [point for run in beam.runs for ring in run.outline.rings for point in ring]
-    ys, zs = zip(*points, strict=True)
+    extents = [extent_of(run.outline) for run in beam.runs]
+    least_y, greatest_y, least_z, greatest_z = zip(*extents, strict=True)
     (x0, y0, z0), (x, y, _), (left_x, left_y, _) = beam.axis.origin, beam.axis.x, beam.axis.y
-    right, left = min(ys) - TOUCHING, max(ys) + TOUCHING
+    right, left = min(least_y) - TOUCHING, max(greatest_y) + TOUCHING
     ends = ((0.0, right), (beam.length, right), (beam.length, left), (0.0, left))
     corners = [(x0 + a * x + b * left_x, y0 + a * y + b * left_y) for a, b in ends]
-    return corners, (z0 + min(zs), z0 + max(zs))
+    return corners, (z0 + min(least_z), z0 + max(greatest_z))
 
 
 @dataclass(frozen=True)

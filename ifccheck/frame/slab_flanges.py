@@ -83,6 +83,8 @@ def counted(beam: Beam, asked: Asked, loads: Sequence[Load]) -> Counted:
     """
     if why := _refused(beam, asked):
         return Counted(remarks=(Remark(beam.key, STAGE, why, "note"),))
+    if asked.wanted == "none":
+        return Counted(source=asked.source)
     meeting = asked.meeting
     level = [one for one in meeting.flanges if asked.wanted == "on top" or not one.on_top]
     flanges = tuple(one for one in level if not _weaker(one, asked.strength))

@@ -114,12 +114,12 @@ def _seating(
 
 def _seats(end: End, contacts: Sequence[Contact]) -> list[Contact]:
     """What surely holds an end; without such, what it faces and that may be its support."""
-    here = [contact for contact in contacts if contact.place == end]
-    sure = [contact for contact in here if not contact.doubt and is_seat(contact)]
+    sure = [c for c in contacts if c.place == end and not c.doubt and is_seat(c)]
     return sure or [
         contact
-        for contact in here
-        if contact.side in ("below", "end")
+        for contact in contacts
+        if contact.place == end
+        and contact.side in ("below", "end")
         and contact.doubt != END_TO_END
         and contact.other_class not in RESTING
     ]

@@ -66,22 +66,28 @@ def _may_carry(member: Member) -> bool:
 def web_of(member: Member) -> Web:
     """A member in plan by its box."""
     box = member.box
-    reach = sum(abs(axis[2]) * half for axis, half in zip(box.axes, box.half, strict=True))
     lying = [row for row in range(3) if abs(box.axes[row][2]) < LEVEL]
     x, y, _ = box.axes[max(lying, key=lambda row: box.half[row])]
-    ring = _ring(box)
+    ring = ring_of(box)
+    low, high = levels_of(box)
     return Web(
         ring=ring,
         core=ring,
-        low=box.centre[2] - reach,
-        high=box.centre[2] + reach,
+        low=low,
+        high=high,
         way=(x, y),
         name=f"{member.name or member.guid} ({member.ifc_class})",
         step=member.step_id,
     )
 
 
-def _ring(box: Box) -> Ring:
+def levels_of(box: Box) -> tuple[float, float]:
+    """Least and greatest height of a box in the building [mm]."""
+    reach = sum(abs(axis[2]) * half for axis, half in zip(box.axes, box.half, strict=True))
+    return box.centre[2] - reach, box.centre[2] + reach
+
+
+def ring_of(box: Box) -> Ring:
     """What a box covers in plan."""
     flat = [row for row in range(3) if abs(box.axes[row][2]) < UPRIGHT]
     x, y, _ = box.centre

@@ -5,6 +5,7 @@ from __future__ import annotations
 import math
 from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
+from functools import lru_cache
 from itertools import pairwise
 
 from ifccheck.beam import Outline, Run
@@ -32,6 +33,8 @@ def disturbed(runs: Sequence[Run]) -> tuple[Disturbed, ...]:
 
     The depth is the greater of those on both sides.
     """
+    if len(runs) == 1 and runs[0].outline_end is None:
+        return ()
     return (*_steps(runs), *_steep_tapers(runs))
 
 
@@ -39,7 +42,7 @@ def _steps(runs: Sequence[Run]) -> Iterator[Disturbed]:
     for before, after in pairwise(runs):
         one, other = before.outline_end or before.outline, after.outline
         if _jumps(one, other):
-            depth, x = max(_depth(one), _depth(other)), after.start
+            depth, x = max(depth_of(one), depth_of(other)), after.start
             text = f"not rated within one depth of the step at x = {show(x, 'length')}"
             yield Disturbed(x - depth, x + depth, text)
 
@@ -48,7 +51,7 @@ def _steep_tapers(runs: Sequence[Run]) -> Iterator[Disturbed]:
     for run in runs:
         if run.outline_end is None or _steepness(run, run.outline_end) <= STEEPEST:
             continue
-        depth = max(_depth(run.outline), _depth(run.outline_end))
+        depth = max(depth_of(run.outline), depth_of(run.outline_end))
         text = (
             f"not rated within one depth of the steep taper from x = {show(run.start, 'length')}"
             f" to {show(run.end, 'length')}"
@@ -56,13 +59,15 @@ def _steep_tapers(runs: Sequence[Run]) -> Iterator[Disturbed]:
         yield Disturbed(run.start - depth, run.end + depth, text)
 
 
-def _depth(outline: Outline) -> float:
+@lru_cache(maxsize=4096)
+def depth_of(outline: Outline) -> float:
+    """From the lowest point of an outline to its highest [mm]."""
     _, _, low, high = bounds(outline.rings)
     return high - low
 
 
 def _jumps(one: Outline, other: Outline) -> bool:
-    slight = SLIGHT * max(_depth(one), _depth(other))
+    slight = SLIGHT * max(depth_of(one), depth_of(other))
     edges = zip(bounds(one.rings), bounds(other.rings), strict=True)
     areas = profile_of(one).area, profile_of(other).area
     return (

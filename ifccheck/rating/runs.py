@@ -192,6 +192,8 @@ def outline_at(run: Run, x: float) -> Outline:
 
 def outline_of(runs: Sequence[Run], x: float) -> Outline:
     """The outline of a beam at a place [mm]; at a step that of the later run."""
+    if len(runs) == 1:
+        return outline_at(runs[0], x)
     held = [run for run in runs if run.start <= x]
     return outline_at(held[-1] if held else runs[0], x)
 

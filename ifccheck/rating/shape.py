@@ -9,8 +9,7 @@ from typing import NamedTuple
 
 from ifccheck.beam import Beam, Outline, Reason, Run, Span
 from ifccheck.mechanics.inclination import inclination_of
-from ifccheck.mechanics.outlines import bounds
-from ifccheck.rating.disturbed import disturbed, undisturbed_length
+from ifccheck.rating.disturbed import depth_of, disturbed, undisturbed_length
 from ifccheck.standards import Standard
 from ifccheck.units import show, show_ratio
 
@@ -118,5 +117,4 @@ def _degrees(angle: float) -> str:
 def _greatest_depth(run: Run) -> float:
     """The depth of a run where it is greatest [mm]."""
     outlines = [run.outline] if run.outline_end is None else [run.outline, run.outline_end]
-    depths = [high - low for _, _, low, high in (bounds(each.rings) for each in outlines)]
-    return max(depths)
+    return max(map(depth_of, outlines))

@@ -4,8 +4,9 @@ from __future__ import annotations
 
 import math
 from collections.abc import Iterator, Sequence
+from functools import lru_cache
 
-from ifccheck.beam import Bars, Face, Remark
+from ifccheck.beam import Bars, Face, Outline, Remark
 from ifccheck.rating.results import LimitStateRating
 from ifccheck.rating.runs import outline_of
 from ifccheck.rating.subject import Subject
@@ -36,8 +37,12 @@ def _bars_of(subject: Subject, face: Face, x: float) -> list[Bars]:
 
 def _extent(subject: Subject, x: float) -> tuple[float, float]:
     """Heights of soffit and top [mm]."""
-    outline = outline_of(subject.runs, x)
-    heights = [z for _, z in outline.rings[0]] if outline else [0.0]
+    return _heights_of(outline_of(subject.runs, x))
+
+
+@lru_cache(maxsize=4096)
+def _heights_of(outline: Outline) -> tuple[float, float]:
+    heights = [z for _, z in outline.rings[0]]
     return min(heights), max(heights)
 
 
