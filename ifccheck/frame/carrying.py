@@ -33,7 +33,7 @@ DIRECT_CLASSES = ("IfcColumn", "IfcWall", "IfcFooting", "IfcPile", "IfcBearing")
 """What presses back over the depth of an end that meets its face."""
 
 
-_Judged = tuple[Contact, str | None]
+Judged = tuple[Contact, str | None]
 """A contact, and the key of the beam that would carry by it; None for the ground"""
 
 
@@ -80,7 +80,7 @@ def carried_contacts(
         What the brief's entries say of ends.
     """
     everything = {**others, **contacts}
-    judged = _judged(everything, _keys(everything, beams), _left_out(out_of_scope), beams)
+    judged = judged_contacts(everything, beams, out_of_scope)
     seats = {
         key: [each for each in own if not each[0].doubt and is_seat(each[0])]
         for key, own in judged.items()
@@ -89,7 +89,7 @@ def carried_contacts(
     return {key: _with_doubts(judged[key], carried) for key in contacts}
 
 
-def _with_doubts(judged: Sequence[_Judged], carried: Set[str]) -> tuple[Contact, ...]:
+def _with_doubts(judged: Sequence[Judged], carried: Set[str]) -> tuple[Contact, ...]:
     return tuple(
         [
             contact._replace(doubt=NOT_CARRIED)
@@ -103,23 +103,23 @@ def _with_doubts(judged: Sequence[_Judged], carried: Set[str]) -> tuple[Contact,
     )
 
 
-def _keys(everything: Mapping[str, Sequence[Contact]], beams: Sequence[Beam]) -> dict[int, str]:
-    """The key of what spans, by step id."""
-    keys = {int(key[1:]): key for key in everything if key.startswith("#")}
-    return keys | {beam.step_id: beam.key for beam in beams}
-
-
-def _left_out(out_of_scope: Iterable[OutOfScope]) -> dict[int, str]:
-    return {each.step_id: each.reason for each in out_of_scope}
-
-
-def _judged(
+def judged_contacts(
     everything: Mapping[str, Sequence[Contact]],
-    keys: Mapping[int, str],
-    left_out: Mapping[int, str],
     beams: Sequence[Beam],
-) -> dict[str, list[_Judged]]:
-    """Every contact with the beam that would carry by it, and what speaks against it at once."""
+    out_of_scope: Iterable[OutOfScope],
+) -> dict[str, list[Judged]]:
+    """Every contact with the beam that would carry by it, and what speaks against it at once.
+
+    Parameters
+    ----------
+    everything
+        Contacts of all that spans, by key, or by "#" and step id.
+    beams, out_of_scope
+        Of the same model.
+    """
+    keys = {int(key[1:]): key for key in everything if key.startswith("#")}
+    keys |= {beam.step_id: beam.key for beam in beams}
+    left_out = {each.step_id: each.reason for each in out_of_scope}
     steps = {key: step for step, key in keys.items()}
     meeting = _ends_meeting(everything, steps)
     return {
@@ -134,7 +134,7 @@ def _judged_alone(
     keys: Mapping[int, str],
     left_out: Mapping[int, str],
     meeting: Set[tuple[int, int]],
-) -> _Judged:
+) -> Judged:
     reason = left_out.get(contact.other_step, "")
     carrier = None if reason in STANDING_USES else keys.get(contact.other_step)
     if not contact.doubt and (doubt := _doubt(contact, step, reason, meeting)):
@@ -162,7 +162,7 @@ def _doubt(contact: Contact, step: int, reason: str, meeting: Set[tuple[int, int
     return ""
 
 
-def _carried(seats: Mapping[str, Sequence[_Judged]], stated: Stated) -> set[str]:
+def _carried(seats: Mapping[str, Sequence[Judged]], stated: Stated) -> set[str]:
     """Keys of all that is carried, found from the ground up."""
     held: dict[str, set[End]] = defaultdict(set)
     resting: dict[str, list[tuple[str, End]]] = defaultdict(list)

@@ -1,0 +1,458 @@
+"""What carries beams, and the lines that they form, in a building with known answers."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass, replace
+from functools import cache
+
+import pytest
+
+from ifccheck.beam import Beam, Model
+from ifccheck.frame.carrying import Stated
+from ifccheck.frame.column_springs import FarEnd, column_stiffness
+from ifccheck.frame.contacts import contacts_of_others, find_contacts
+from ifccheck.frame.ground_up import Joint
+from ifccheck.frame.lines import Lines, find_lines
+from tests.frames_of_beams import (
+    SETTINGS,
+    Maker,
+    Setting,
+    block,
+    column,
+    everything,
+    face_to_face,
+    girders,
+    lying,
+    one_over_three_columns,
+    read,
+    three_over_three_columns,
+)
+
+Row = tuple[str, float, float, float, str, str, bool]
+"""Place, centre, faces, carrier, way, direct"""
+
+BELOW, END, THROUGH = "below", "end", "through"
+SEATS: Mapping[str, Sequence[Row]] = {
+    "ONE": [
+        ("start", 200, 0, 400, "C1", BELOW, True),
+        ("between", 6200, 6000, 6400, "C2", BELOW, True),
+        ("between", 12200, 12000, 12400, "C3", BELOW, True),
+    ],
+    "T1": [
+        ("start", 200, 0, 400, "D1", BELOW, True),
+        ("end", 6200, 6000, 6400, "D2", BELOW, True),
+    ],
+    "T2": [
+        ("start", 0, -200, 200, "D3", BELOW, True),
+        ("end", 6000, 5800, 6200, "D2", BELOW, True),
+    ],
+    "T3": [("start", 0, -200, 200, "D3", BELOW, True)],
+    "F1": [
+        ("start", -200, -400, 0, "E1", END, True),
+        ("end", 5800, 5600, 6000, "E2", END, True),
+    ],
+    "F2": [
+        ("start", -200, -400, 0, "E2", END, True),
+        ("end", 5800, 5600, 6000, "E3", END, True),
+    ],
+    "G2": [
+        ("start", 200, 0, 400, "H2a", BELOW, True),
+        ("end", 7800, 7600, 8000, "H2b", BELOW, True),
+    ],
+    "S1": [
+        ("start", -150, -300, 0, "G1", END, False),
+        ("end", 4850, 4700, 5000, "G2", END, False),
+    ],
+    "S2": [
+        ("start", -150, -300, 0, "G2", END, False),
+        ("end", 4850, 4700, 5000, "G3", END, False),
+    ],
+    "TOP": [
+        ("start", 150, 0, 300, "G1", BELOW, True),
+        ("between", 5150, 5000, 5300, "G2", BELOW, True),
+        ("end", 10150, 10000, 10300, "G3", BELOW, True),
+    ],
+    "K1": [("start", 50, -100, 200, "W1", BELOW, True)],
+    "K2": [("start", -150, -300, 0, "W1", END, True)],
+    "ON": [
+        ("start", 125, 0, 250, "W2", BELOW, True),
+        ("end", 5125, 5000, 5250, "W3", BELOW, True),
+    ],
+    "P": [
+        ("start", 300, 0, 600, "PILE", BELOW, True),
+        ("between", 4500, 4000, 5000, "FOOT", BELOW, True),
+        ("end", 8850, 8700, 9000, "PAD", BELOW, True),
+    ],
+    "CORB": [
+        ("start", 95, -30, 220, "N1", BELOW, True),
+        ("end", 5445, 5320, 5570, "N2", BELOW, True),
+    ],
+    "AIR": [],
+    "ODD": [("start", 200, 0, 400, "Q3", BELOW, True)],
+    "X1": [
+        ("start", 200, 0, 400, "U1", BELOW, True),
+        ("end", 7800, 7600, 8000, "U2", BELOW, True),
+    ],
+    "DEEP": [
+        ("start", 200, 0, 400, "V1", BELOW, True),
+        ("end", 7800, 7600, 8000, "V2", BELOW, True),
+    ],
+    "THIN": [
+        ("start", 200, 0, 400, "V3", BELOW, True),
+        ("between", 4000, 3850, 4150, "DEEP", THROUGH, False),
+        ("end", 7800, 7600, 8000, "V4", BELOW, True),
+    ],
+}
+
+Span = tuple[str, float, float, str, str]
+"""Beam, start and end in its own x, kinds in its own x"""
+
+PIN, ON, FREE, FIX = "pinned", "continuous", "free", "fixed"
+LINES: Sequence[Sequence[Span]] = [
+    [
+        ("ONE", 200, 6200, PIN, ON), ("ONE", 6200, 12200, ON, ON), ("ONE", 12200, 14200, ON, FREE),
+    ],
+    [("T1", 200, 6200, PIN, ON), ("T2", 0, 6000, ON, ON), ("T3", 0, 2000, ON, FREE)],
+    [("F1", -200, 5800, PIN, ON), ("F2", -200, 5800, ON, PIN)],
+    [("S1", -150, 4850, PIN, ON), ("S2", -150, 4850, ON, PIN)],
+    [("TOP", 150, 5150, PIN, ON), ("TOP", 5150, 10150, ON, PIN)],
+    [("G1", 200, 7800, PIN, PIN)],
+    [("K1", 200, 2200, FIX, FREE)],
+    [("K2", 0, 2000, FIX, FREE)],
+    [("ON", 125, 5125, PIN, PIN)],
+    [("P", 300, 4500, PIN, ON), ("P", 4500, 8850, ON, PIN)],
+    [("CORB", 95, 5445, PIN, PIN)],
+    [("X2", 200, 7800, PIN, PIN)],
+    [("THIN", 200, 4000, PIN, ON), ("THIN", 4000, 7800, ON, PIN)],
+]  # fmt: skip
+
+
+@dataclass(frozen=True)
+class Stood:
+    """A building and how its beams stand."""
+
+    model: Model
+    lines: Lines
+
+    @property
+    def names(self) -> dict[str, str]:
+        return {beam.key: beam.name for beam in self.model.beams}
+
+    def key(self, name: str) -> str:
+        return next(beam.key for beam in self.model.beams if beam.name == name)
+
+    def beam(self, name: str) -> Beam:
+        return next(beam for beam in self.model.beams if beam.name == name)
+
+    def rows(self, name: str) -> list[Row]:
+        return [
+            (s.place, s.x, s.low, s.high, s.carrier_name.split(" ")[0], s.way, s.direct)
+            for s in self.lines.seats[self.key(name)]
+        ]
+
+    def spans(self) -> list[list[Span]]:
+        names = self.names
+        return [
+            [(names[s.beam], s.start.x, s.end.x, s.start.kind, s.end.kind) for s in line.spans]
+            for line in self.lines.lines
+        ]
+
+    def told(self, name: str) -> list[str]:
+        return [remark.text for remark in self.lines.remarks[self.key(name)]]
+
+    def why(self, name: str) -> str:
+        return self.lines.unknown[self.key(name)].text
+
+
+def always(one: Joint, other: Joint) -> bool:
+    return True
+
+
+def never(one: Joint, other: Joint) -> bool:
+    return False
+
+
+def stand(model: Model, *, through: bool = True, stated: Stated | None = None) -> Stood:
+    by_name = {beam.name: beam.key for beam in model.beams}
+    contacts = find_contacts(model.beams, model.members)
+    others = contacts_of_others(model.beams, model.members)
+    said = {by_name[name]: ends for name, ends in (stated or {}).items()}
+    found = find_lines(model, contacts, others, said, always if through else never)
+    return Stood(model, found)
+
+
+@cache
+def building(setting: Setting) -> Stood:
+    return stand(read(everything(), setting))
+
+
+def rows_near(found: Sequence[Sequence[object]], expected: Sequence[Sequence[object]]) -> None:
+    assert len(found) == len(expected)
+    for one, other in zip(found, expected, strict=True):
+        assert len(one) == len(other)
+        for a, b in zip(one, other, strict=True):
+            assert a == (pytest.approx(b, abs=1e-3) if isinstance(b, int | float) else b), one
+
+
+@pytest.mark.parametrize("setting", SETTINGS, ids=str)
+@pytest.mark.parametrize("name", SEATS)
+def test_what_carries_each_beam(name: str, setting: Setting) -> None:
+    rows_near(building(setting).rows(name), SEATS[name])
+
+
+@pytest.mark.parametrize("setting", SETTINGS, ids=str)
+@pytest.mark.parametrize("expected", LINES, ids=lambda line: line[0][0])
+def test_the_line_of_each_beam(expected: Sequence[Span], setting: Setting) -> None:
+    spans = building(setting).spans()
+    (line,) = [line for line in spans if line[0][0] == expected[0][0]]
+    rows_near(line, expected)
+
+
+@pytest.mark.parametrize("setting", SETTINGS, ids=str)
+def test_every_beam_is_in_one_line_or_has_a_reason(setting: Setting) -> None:
+    stood = building(setting)
+    in_lines = [beam.key for line in stood.lines.lines for beam in line.beams]
+    assert sorted(in_lines + list(stood.lines.unknown)) == sorted(stood.names)
+    assert {stood.names[key] for key in stood.lines.unknown} == {"AIR", "ALONG", "ODD"}
+    for line in stood.lines.lines:
+        assert len(line.nodes) == len(line.spans) + 1
+
+
+def test_reasons_say_why_a_beam_has_no_way_to_stand() -> None:
+    stood = building(Setting())
+    assert "nothing that could carry it touches it" in stood.why("AIR")
+    assert "it lies on W4 (IfcWall) from end to end" in stood.why("ALONG")
+    assert "only Q3 (IfcColumn) carries it, at x = 0.20 m" in stood.why("ODD")
+    assert all(stood.why(name).startswith("supports unknown: ") for name in ("AIR", "ALONG", "ODD"))
+
+
+def test_remarks_name_what_carries() -> None:
+    stood = building(Setting())
+    assert stood.told("ONE") == [
+        "supported at x = 0.20 m by C1 (IfcColumn), from below, 400 mm wide",
+        "supported at x = 6.20 m by C2 (IfcColumn), from below, 400 mm wide",
+        "supported at x = 12.20 m by C3 (IfcColumn), from below, 400 mm wide",
+        "it hangs over by 2.00 m, to its tip at x = 14.20 m",
+    ]
+    assert "supported at x = -0.15 m by G1 (IfcBeam), framing into its side, 300 mm wide" in (
+        stood.told("S1")
+    )
+    assert "a cantilever of 2.00 m, built into W1 (IfcWall) at x = 0.20 m" in stood.told("K1")
+    assert "goes on into T2 (IfcBeam) over D2 (IfcColumn) at x = 6.20 m with all moment" in (
+        stood.told("T1")
+    )
+    kinds = {remark.kind for own in stood.lines.remarks.values() for remark in own}
+    assert kinds == {"assumption"}
+
+
+def test_the_middle_part_drawn_backward_runs_against_the_line() -> None:
+    stood = building(Setting())
+    (line,) = [line for line in stood.lines.lines if stood.names[line.beams[0].key] == "T1"]
+    assert [(stood.names[beam.key], beam.reversed) for beam in line.beams] == [
+        ("T1", False), ("T2", True), ("T3", False),
+    ]  # fmt: skip
+    assert [span.reversed for span in line.spans] == [False, True, False]
+    assert [node.kind for node in line.nodes] == [PIN, ON, ON, FREE]
+    assert [[seat.carrier_name.split(" ")[0] for seat in node.seats] for node in line.nodes] == [
+        ["D1"], ["D2", "D2"], ["D3", "D3"], [],
+    ]  # fmt: skip
+    first, second = line.spans[1].ends
+    assert (first.x, first.face, second.x, second.face) == pytest.approx((6000, 5800, 0, 200))
+
+
+def test_one_element_and_three_have_the_same_spans() -> None:
+    stood = building(Setting())
+    lengths = {}
+    for line in stood.lines.lines:
+        name = stood.names[line.beams[0].key]
+        lengths[name] = [span.length for span in line.spans]
+    for name in ("ONE", "T1"):
+        assert lengths[name] == pytest.approx([6000, 6000, 2000])
+
+
+def test_without_bars_that_run_through_every_part_stands_alone() -> None:
+    stood = stand(read(three_over_three_columns()), through=False)
+    rows_near(sorted(map(tuple, (line[0] for line in stood.spans()))), [
+        ("T1", 200, 6200, PIN, PIN), ("T2", 0, 6000, PIN, PIN),
+    ])  # fmt: skip
+    assert "only D3 (IfcColumn) carries it" in stood.why("T3")
+    assert stood.told("T1")[-1] == (
+        "meets T2 (IfcBeam) over D2 (IfcColumn) at x = 6.20 m, and takes no moment from it:"
+        " nothing shows bars that run through"
+    )
+
+
+def test_each_joint_is_asked_for_with_its_own_ends() -> None:
+    model = read(face_to_face())
+    names = {beam.key: beam.name for beam in model.beams}
+    asked = set()
+
+    def ask(one: Joint, other: Joint) -> bool:
+        asked.add(((names[one[0]], one[1]), (names[other[0]], other[1])))
+        return True
+
+    contacts = find_contacts(model.beams, model.members)
+    find_lines(model, contacts, {}, {}, ask)
+    assert asked == {(("F1", "end"), ("F2", "start")), (("F2", "start"), ("F1", "end"))}
+
+
+def test_beams_off_the_line_do_not_go_on_into_each_other() -> None:
+    tall = (0.0, 6000.0)
+    for off, level, expected in ((0, 0, 1), (40, 0, 1), (120, 0, 2), (0, 40, 1), (0, 150, 2)):
+        members = [
+            lying("A", (200, 0, 3000), (5800, 0, 3000)),
+            lying("B", (6200, off, 3000 + level), (11800, off, 3000 + level)),
+            column("1", 0, 0, tall), column("2", 6000, 0, tall), column("3", 12000, 0, tall),
+        ]  # fmt: skip
+        assert len(stand(read(members)).lines.lines) == expected, (off, level)
+
+
+def test_a_wall_of_many_beams_joins_only_those_in_line() -> None:
+    walls = [
+        block(f"W{n}", (x, 30000), (300, 60000), (0, 3000), "IfcWall")
+        for n, x in enumerate((0, 5000, 10000))
+    ]
+    beams = [
+        lying(f"{n}-{side}", (x, 1500 * n, 3000), (x + 5000, 1500 * n, 3000))
+        for n in range(1, 40)
+        for side, x in (("a", 0), ("b", 5000))
+    ]
+    stood = stand(read([*walls, *beams]))
+    assert sorted(tuple(span[0] for span in line) for line in stood.spans()) == sorted(
+        (f"{n}-a", f"{n}-b") for n in range(1, 40)
+    )
+
+
+def test_beams_that_cross_at_one_level_are_both_told() -> None:
+    stood = building(Setting())
+    told = {stood.names[key]: reasons for key, reasons in stood.lines.crossing.items()}
+    assert set(told) == {"X1", "X2"}
+    assert "X2 (IfcBeam) crosses it at one level at x = 4.00 m" in told["X1"][0].text
+    assert not told["X1"][0].blocking
+
+
+def test_what_carries_comes_before_what_it_carries() -> None:
+    stood = building(Setting())
+    place = {key: n for n, key in enumerate(stood.lines.order)}
+    for key, seats in stood.lines.seats.items():
+        for seat in seats:
+            if seat.carrier_beam and not seat.doubt:
+                assert place[seat.carrier_beam] < place[key]
+    assert stood.key("G1") in place
+    assert stood.key("AIR") not in place
+
+
+def test_beams_on_beams_that_nothing_carries_do_not_stand() -> None:
+    model = read(girders())
+    model = replace(model, members=tuple(m for m in model.members if not m.name.startswith("H2")))
+    stood = stand(model)
+    assert {stood.names[key] for key in stood.lines.unknown} == {"G2", "S1", "S2", "TOP"}
+    assert "nothing that could carry it" in stood.why("G2")
+    assert "G2 (IfcBeam): nothing shows that it is carried" in stood.why("S1")
+
+
+def pinwheel(columns: Sequence[int]) -> list[Maker]:
+    """Four beams of which each frames into the side of the next; some have outer columns."""
+    outward = [((-150, 0), (9000, 0)), ((6000, -150), (6000, 9000)),
+               ((6150, 6000), (-3000, 6000)), ((0, 6150), (0, -3000))]  # fmt: skip
+    found = []
+    for n, ((x0, y0), (x1, y1)) in enumerate(outward):
+        length = math.dist((x0, y0), (x1, y1))
+        u, v = (x1 - x0) / length, (y1 - y0) / length
+        start = (x0 + 300 * u, y0 + 300 * v, 3000)
+        found.append(lying(f"R{n}", start, (x1, y1, 3000)))
+        if n in columns:
+            found.append(column(f"C{n}", x1 - 200 * u, y1 - 200 * v))
+    return found
+
+
+def test_a_ring_of_beams_holds_itself_up_by_none() -> None:
+    stood = stand(read(pinwheel([0, 1, 2, 3])))
+    assert {stood.names[key] for key in stood.lines.unknown} == {"R0", "R1", "R2", "R3"}
+
+
+def test_a_beam_is_not_carried_by_what_it_carries() -> None:
+    """One of the ring stands on columns of its own: the seat that closes the ring is refused."""
+    own = pinwheel([0, 1, 2, 3])
+    stood = stand(read([*own, column("EXTRA", 3000, 0)]))
+    assert "R0" in {stood.names[key] for key in stood.lines.unknown}
+    assert "is itself carried by what this beam carries" in stood.why("R0")
+    assert {stood.names[key] for key in stood.lines.unknown} == {"R0"}
+
+
+@pytest.mark.parametrize(
+    ("said", "kinds"),
+    [
+        ({}, (PIN, PIN)),
+        ({"start": "fixed"}, (FIX, PIN)),
+        ({"start": "fixed", "end": "free"}, (FIX, FREE)),
+        ({"end": "pinned"}, (PIN, PIN)),
+    ],
+)
+def test_the_brief_may_say_otherwise(said: dict[str, str], kinds: tuple[str, str]) -> None:
+    stood = stand(read(girders()), stated={"G1": said})  # type: ignore[dict-item]
+    (line,) = [line for line in stood.spans() if line[0][0] == "G1"]
+    assert (line[0][3], line[-1][4]) == kinds
+
+
+def test_the_brief_may_hold_a_beam_in_the_air() -> None:
+    model = read([lying("AIR", (0, 0, 3000), (4000, 0, 3000))])
+    pinned = stand(model, stated={"AIR": {"start": "pinned", "end": "pinned"}})
+    rows_near(pinned.spans()[0], [("AIR", 0, 4000, PIN, PIN)])
+    fixed = stand(model, stated={"AIR": {"start": "free", "end": "fixed"}})
+    rows_near(fixed.spans()[0], [("AIR", 0, 4000, FREE, FIX)])
+    assert not fixed.told("AIR")[1:]
+
+
+@pytest.mark.parametrize(("far", "factor"), [("fixed", 4.0), ("pinned", 3.0)])
+@pytest.mark.parametrize("setting", SETTINGS[:3], ids=str)
+def test_columns_above_and_below_resist_turning(
+    far: FarEnd, factor: float, setting: Setting
+) -> None:
+    """A column 300 x 500, long side along the beam, 3000 below the soffit and 2400 above the top;
+    the beam is 600 deep. I = 300 * 500^3 / 12; lengths 3300 and 2700 to its middle."""
+    members = [
+        lying("A", (0, 0, 3000), (6000, 0, 3000)),
+        block("under", (200, 0), (500, 300), (0, 3000)),
+        block("over", (200, 0), (500, 300), (3600, 6000)),
+        block("through", (5900, 0), (400, 400), (0, 6000)),
+    ]
+    stood = stand(read(members, setting))
+    beam, contacts = stood.beam("A"), find_contacts(stood.model.beams, stood.model.members)
+    by_step = {member.step_id: member for member in stood.model.members}
+    first, last = stood.lines.seats[beam.key]
+    found = [
+        column_stiffness(beam, seat, contacts[beam.key], by_step, far) for seat in (first, last)
+    ]
+    lengths = 1 / 3300 + 1 / 2700
+    assert found[0] == pytest.approx(factor * 300 * 500**3 / 12 * lengths, rel=1e-6)
+    assert found[1] == pytest.approx(factor * 400 * 400**3 / 12 * lengths, rel=1e-6)
+
+
+def test_a_column_turned_by_45_degrees_is_as_stiff_as_its_outline() -> None:
+    """A rectangle b x h at 45 degrees: (b h^3 + h b^3) / 24."""
+    members = [lying("A", (0, 0, 3000), (6000, 0, 3000)), column("far", 5800, 0)]
+    model = read([*members, block("near", (200, 0), (300, 500), (0, 3000))])
+    c = math.sqrt(0.5)
+    axes = ((c, c, 0.0), (-c, c, 0.0), (0.0, 0.0, 1.0))
+    turned = tuple(
+        replace(m, box=replace(m.box, axes=axes, half=(150.0, 250.0, 1500.0)))
+        if m.name == "near"
+        else m
+        for m in model.members
+    )
+    model = replace(model, members=turned)
+    stood = stand(model)
+    beam = stood.beam("A")
+    contacts = find_contacts(model.beams, model.members)[beam.key]
+    by_step = {member.step_id: member for member in model.members}
+    found = column_stiffness(beam, stood.lines.seats[beam.key][0], contacts, by_step, "fixed")
+    inertia = (300 * 500**3 + 500 * 300**3) / 24
+    assert found == pytest.approx(4 * inertia / 3300, rel=1e-6)
+
+
+def test_one_element_over_columns_needs_no_joint() -> None:
+    stood = stand(read(one_over_three_columns()), through=False)
+    assert len(stood.spans()[0]) == 3
