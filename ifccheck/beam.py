@@ -24,6 +24,11 @@ from ifccheck.members import Member as Member
 from ifccheck.members import OutOfScope as OutOfScope
 from ifccheck.members import Storey as Storey
 from ifccheck.members import Unmeasured as Unmeasured
+from ifccheck.model_loads import NO_MODEL_LOADS as NO_MODEL_LOADS
+from ifccheck.model_loads import ActionDoubt as ActionDoubt
+from ifccheck.model_loads import LaidAction as LaidAction
+from ifccheck.model_loads import ModelCase as ModelCase
+from ifccheck.model_loads import ModelLoads as ModelLoads
 from ifccheck.openings import Opening as Opening
 from ifccheck.openings import ShearLoss as ShearLoss
 from ifccheck.slabs import Flange as Flange
@@ -352,6 +357,8 @@ class Model:
     """Level slabs, which beams may be cast with"""
     mapped: frozenset[str] = frozenset()
     """Fields of the brief's mapping of which some beam in scope has a property"""
+    loads: ModelLoads = NO_MODEL_LOADS
+    """Of its structural analysis models"""
 
 
 class Load(NamedTuple):

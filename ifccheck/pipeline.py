@@ -14,6 +14,7 @@ from ifccheck.brief.load import load_brief
 from ifccheck.brief.loads import upward_remarks
 from ifccheck.brief.merging import Matches
 from ifccheck.brief.model import Brief, ScheduleRow
+from ifccheck.brief.model_cases import case_remarks, check_model_cases
 from ifccheck.brief.places import did_you_mean
 from ifccheck.brief.schedule import read_schedule
 from ifccheck.brief.selecting import (
@@ -109,6 +110,7 @@ def rate(models: Sequence[Path], brief_path: Path, say: Say = lambda _: None) ->
     found = tuple(find_beams(read, plan) for read in reads)
     check_reached(plan.brief, found)
     check_mapping(plan.brief, [read.model.mapped for read in reads], _properties_of(reads))
+    check_model_cases(plan.brief, [read.model.loads for read in reads])
     rated = tuple(
         rate_model(read, join(plan.brief, plan.schedule, of_model), plan, found, say)
         for read, of_model in zip(reads, found, strict=True)
@@ -291,6 +293,8 @@ def gather_model(read: Read, matches: Matches, plan: Plan, say: Say) -> tuple[Mo
     model = results.with_beams(
         read.model, tuple(with_schedule(plan.schedule, matches, beams).values())
     )
+    told = case_remarks(plan.brief, model.loads)
+    model = replace(model, remarks=(*model.remarks, *told)) if told else model
     return model, gather(model, plan.brief, matches, plan.standard)
 
 

@@ -19,6 +19,7 @@ from ifccheck.brief.model import (
     LoadTableFile,
     ReinforcementField,
     Scope,
+    TakenCase,
 )
 from ifccheck.brief.places import did_you_mean, shown
 
@@ -47,6 +48,7 @@ def to_brief(table: schema.BriefTable, path: Path, source: Source) -> Brief:
         materials=tuple(material_entry(i, t) for i, t in enumerate(table.materials)),
         combinations=combination_entries(table.combinations, cases),
         scope=_scope(table.scope),
+        from_model=_from_model(table.cases),
         load_tables=_load_tables(table.load_tables, path),
     )
     _check_slab_bars(brief)
@@ -103,6 +105,25 @@ def _check_case(name: str, table: schema.CaseTable, names: list[str]) -> None:
             raise FaultError(
                 (*path, "excludes"), f"unknown case '{other}': {did_you_mean(other, known)}"
             )
+
+
+def _from_model(tables: Mapping[str, schema.CaseTable]) -> Mapping[str, TakenCase]:
+    """The load cases of the model that cases take, each taken once."""
+    found: dict[str, TakenCase] = {}
+    for case, table in tables.items():
+        if table.upward and not table.from_model:
+            raise FaultError(
+                ("cases", case, "upward"),
+                "is for loads of the model, and the case has no from_model: write it at the load",
+            )
+        for name in table.from_model:
+            if name in found:
+                raise FaultError(
+                    ("cases", case, "from_model"),
+                    f"'{name}' is taken by cases.{found[name].case} already: it would count twice",
+                )
+            found[name] = TakenCase(case, table.upward)
+    return found
 
 
 def _defaults(table: schema.DefaultsTable) -> Defaults:

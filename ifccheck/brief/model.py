@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterator, Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from pathlib import Path
 from typing import Literal
 
@@ -230,6 +230,15 @@ class LoadTableFile:
 
 
 @dataclass(frozen=True, slots=True)
+class TakenCase:
+    """A case of the brief that takes the loads of load cases of the model."""
+
+    case: str
+    upward: bool
+    """The engineer means that some of them act upward"""
+
+
+@dataclass(frozen=True, slots=True)
 class Brief:
     """The engineer's brief, validated."""
 
@@ -257,6 +266,8 @@ class Brief:
     scope: Scope = NO_SCOPE
     load_tables: tuple[LoadTableFile, ...] = ()
     """Tables whose rows are among ``loads``"""
+    from_model: Mapping[str, TakenCase] = field(default_factory=dict)
+    """By the name of a load case in the model: the case of the brief that takes it"""
 
     @property
     def asks_for_slabs(self) -> bool:

@@ -94,6 +94,15 @@ def _slab_bars(value: object) -> SlabBars:
     return "anchored"
 
 
+def _names(value: object) -> tuple[str, ...]:
+    """One text, or a list of texts."""
+    given = value if isinstance(value, list) else [value]
+    names = [name.strip() for name in given if isinstance(name, str) and name.strip()]
+    if not names or len(names) != len(given):
+        raise ValueError("must be the name of a load case of the model, or a list of such names")
+    return tuple(names)
+
+
 Name = Annotated[
     str, StringConstraints(min_length=1, max_length=80, pattern=r"^[^\x00-\x1f\x7f]*$")
 ]
@@ -165,6 +174,8 @@ class CaseTable(Table):
     rated: bool = False
     excludes: list[Name] = Field(default_factory=list)
     removable: bool = False
+    from_model: Annotated[tuple[str, ...], PlainValidator(_names)] = ()
+    upward: bool = False
 
 
 def _mark(text: str) -> str:

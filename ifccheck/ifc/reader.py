@@ -9,6 +9,7 @@ from operator import attrgetter
 
 from ifccheck.beam import Beam, Box, Model, Reinforcement, Remark
 from ifccheck.errors import ModelError
+from ifccheck.ifc.analysis_models import read_model_loads
 from ifccheck.ifc.beams import BeamReader, Identity
 from ifccheck.ifc.context import BeamFrame, Context, make_context
 from ifccheck.ifc.described import sets_described
@@ -93,6 +94,7 @@ def _read(
             left_out.append(found.beam)
     members = MemberReader(context, profiles, storeys, bodies).read(products, known)
     reinforced, unread = _reinforced(context, beams, mapping, statements, choice)
+    told = (*choice.remarks, *_repeats(own), *reader.remarks, *members.remarks, *unread)
     return Model(
         name=opened.name,
         file_name=opened.file_name,
@@ -102,17 +104,11 @@ def _read(
         out_of_scope=tuple(left_out),
         members=members.members,
         storeys=storeys.all,
-        remarks=(
-            *opened.remarks,
-            *choice.remarks,
-            *_repeats(own),
-            *reader.remarks,
-            *members.remarks,
-            *unread,
-        ),
+        remarks=(*opened.remarks, *told),
         unmeasured=members.unmeasured,
         slabs=SlabReader(context, profiles).read() if beams and choice.slabs else (),
         mapped=fields_held(context, (beam.step_id for beam in beams), mapping),
+        loads=read_model_loads(context, beams),
     )
 
 

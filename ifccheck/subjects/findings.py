@@ -76,3 +76,9 @@ class Sources:
     """Entries of loads that act upward, by place, and whether the engineer says so"""
     slabs: Slabs
     around: Surroundings
+    action_doubts: Mapping[str, Sequence[str]]
+    """What of the actions of an analysis model is not laid on each beam, or not surely"""
+    untaken: Mapping[str, Sequence[str]]
+    """Load cases of the model that load each beam and that the brief does not take"""
+    uncarried: Sequence[str]
+    """Actions of cases that the brief takes which may act on any beam"""

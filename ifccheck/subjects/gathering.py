@@ -17,6 +17,13 @@ from ifccheck.beam import (
 from ifccheck.brief.loads import loads_on_beams
 from ifccheck.brief.merging import Matches
 from ifccheck.brief.model import Brief
+from ifccheck.brief.model_cases import (
+    doubts_by_beam,
+    taken_loads,
+    uncarried,
+    untaken_by_beam,
+    upward_of,
+)
 from ifccheck.brief.statements import (
     BeamStatement,
     default_materials,
@@ -47,6 +54,7 @@ from ifccheck.subjects.findings import Findings, Sources
 from ifccheck.subjects.flange_widths import with_widths
 from ifccheck.subjects.slab_steel import SlabSteel, slab_steel_of
 from ifccheck.subjects.steel import Steel, steel_of
+from ifccheck.units import clipped
 
 Row = TypeVar("Row", Load, Remark)
 
@@ -90,7 +98,10 @@ def gather(model: Model, brief: Brief, matches: Matches, standard: Standard) -> 
         crane_cases={case.name for case in brief.cases if case.nature == "crane"},
         stances=stances(model.beams),
         ignored=ignored_contacts(brief, matches, contacts),
-        upward={entry.place: entry.upward for entry in brief.loads if entry.acts_upward},
+        upward=_upward(brief, model),
+        action_doubts=doubts_by_beam(brief, model.loads),
+        untaken=untaken_by_beam(brief, model.loads),
+        uncarried=uncarried(brief, model.loads),
         permanent_cases={case.name for case in brief.cases if case.nature == "permanent"},
     )
     standing = {
@@ -99,7 +110,10 @@ def gather(model: Model, brief: Brief, matches: Matches, standard: Standard) -> 
         if not isinstance(pair, Reason) and beams[key].axis
     }
     spans = {key: each.span for key, each in standing.items()}
-    loads = loads_on_beams(brief, matches, beams, spans, contacts)
+    loads = (
+        *loads_on_beams(brief, matches, beams, spans, contacts),
+        *taken_loads(brief, model.loads, beams, spans),
+    )
     of_beam = _by_beam(loads)
     found = [
         _one(beam, sources, standing.get(beam.key), of_beam.get(beam.key, ()))
@@ -117,6 +131,11 @@ def _not_concrete(model: Model) -> frozenset[int]:
     return frozenset(
         each.step_id for each in model.out_of_scope if each.reason not in ("footing", "wall")
     )
+
+
+def _upward(brief: Brief, model: Model) -> dict[str, bool]:
+    entries = {entry.place: entry.upward for entry in brief.loads if entry.acts_upward}
+    return {**entries, **upward_of(brief, model.loads)}
 
 
 def _by_beam(rows: Sequence[Row]) -> dict[str, list[Row]]:
@@ -281,6 +300,25 @@ def _judge_upward(sources: Sources, loads: Sequence[Load], findings: Findings) -
             )
 
 
+def _judge_model_loads(
+    beam: Beam, sources: Sources, statement: BeamStatement, findings: Findings
+) -> None:
+    """Note every doubt about what acts on the beam by the model's own analysis model."""
+    for text in sources.action_doubts.get(beam.key, ()):
+        findings.refuse(text, blocking=False)
+    for name in sources.untaken.get(beam.key, ()):
+        which = f"load case {clipped(name)}" if name else "an action of no load case"
+        text = f"{which} of the model acts on it, and no case of the brief takes it"
+        findings.remarks.append(Remark(beam.key, "loads", text, "doubt"))
+    if not statement.loads_complete:
+        for text in sources.uncarried:
+            findings.refuse(
+                f"{text}: it is not carried to beams; give what of it acts on this beam under"
+                " [[loads]] and write loads_complete = true",
+                blocking=False,
+            )
+
+
 def _judge_loads(
     beam: Beam,
     sources: Sources,
@@ -294,6 +332,7 @@ def _judge_loads(
         findings.refuse("no load assigned", blocking=False)
     if sources.upward:
         _judge_upward(sources, loads, findings)
+    _judge_model_loads(beam, sources, statement, findings)
     hung = sorted({load.origin for load in loads if load.face == "bottom"})
     if hung:
         places = ", ".join(hung)

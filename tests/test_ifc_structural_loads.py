@@ -1,0 +1,431 @@
+"""Loads of structural analysis models: read by hand from what was written, on whichever beam."""
+
+from __future__ import annotations
+
+import math
+from typing import Any
+
+import pytest
+
+from ifccheck.beam import LaidAction, Model, ModelCase
+from tests.ifc_models import Building
+from tests.structural_models import POUND_FORCE, Analysis
+
+UNITS = [("IFC2X3", "METRE", "kN"), ("IFC4", "INCH", "lbf"), ("IFC4X3", "FOOT", "kip"),
+         ("IFC4", "MILLIMETRE", "N")]  # fmt: skip
+DOWN = {"z": -10.0}
+
+
+class Hall:
+    """A beam of 300 x 600 from (0, 0, 3000) on, along x or up a slope, and an analysis model."""
+
+    def __init__(
+        self, schema: str = "IFC4", unit: str = "MILLIMETRE", force: str = "kN",
+        along: tuple[float, float, float] = (1.0, 0.0, 0.0), declared: bool = True,
+        beams: int = 1, shared: Any = None,
+    ) -> None:  # fmt: skip
+        self.building = Building(schema, unit)
+        self.beams = [self._beam(n, along) for n in range(beams)]
+        placement = self.building.placement(*shared) if shared else None
+        self.analysis = Analysis(
+            self.building.file, self.building.mm, self.building.history, force, declared, placement
+        )
+
+    def _beam(self, number: int, along: tuple[float, float, float]) -> Any:
+        made = self.building
+        place = made.placement((6000.0 * number, 0.0, 3000.0), along, (0.0, 1.0, 0.0))
+        solid = made.extrusion(made.rectangle(300.0, 600.0), 6000.0)
+        return made.beam(solid, placement=place, Name=f"B-{number + 1}")
+
+    def read(self) -> Model:
+        return self.building.read()
+
+
+def only(model: Model) -> LaidAction:
+    (laid,) = model.loads.laid
+    return laid
+
+
+def case_of(model: Model, name: str) -> ModelCase:
+    (case,) = [case for case in model.loads.cases if case.name == name]
+    return case
+
+
+def doubts(model: Model) -> str:
+    return "; ".join(doubt.text for doubt in model.loads.doubts)
+
+
+@pytest.mark.parametrize(("schema", "unit", "force"), UNITS)
+@pytest.mark.parametrize("ends", [(0.0, 6000.0), (6000.0, 0.0)], ids=["same way", "reversed"])
+@pytest.mark.parametrize("tied", [None, "member to beam", "beam to member"])
+def test_a_line_load_reaches_the_beam_in_every_schema_and_unit(
+    schema: str, unit: str, force: str, ends: tuple[float, float], tied: str | None
+) -> None:
+    hall = Hall(schema, unit, force)
+    analysis, (beam,) = hall.analysis, hall.beams
+    high = 3000.0 if tied is None else 3450.0  # a tied member may lie off the beam's body
+    member = analysis.member((ends[0], 0.0, high), (ends[1], 0.0, high))
+    if tied == "member to beam":
+        analysis.tie(member, beam)
+    elif tied:
+        analysis.tie(beam, member)
+    analysis.along(member, analysis.linear(**DOWN), analysis.case("Live", "VARIABLE_Q"))
+    model = hall.read()
+    laid = only(model)
+    assert (laid.case, laid.kind) == ("Live", "line")
+    assert laid.values == pytest.approx((10.0, 10.0))
+    assert (laid.start, laid.end) == pytest.approx((0.0, 6000.0))
+    assert laid.origin.startswith("IfcStructuralLinearAction 'Line' (#")
+    assert case_of(model, "Live").actions == 1
+    assert case_of(model, "Live").permanent is False
+    assert not model.loads.doubts
+    assert not case_of(model, "Live").lost
+
+
+def test_a_member_that_is_not_tied_and_lies_off_the_body_reaches_no_beam() -> None:
+    hall = Hall()
+    member = hall.analysis.member((0.0, 0.0, 3450.0), (6000.0, 0.0, 3450.0))
+    hall.analysis.along(member, hall.analysis.linear(**DOWN), hall.analysis.case("Live"))
+    model = hall.read()
+    assert not model.loads.laid
+    assert case_of(model, "Live").lost == (
+        "60.0 kN of 60.0 kN act on no beam in scope, or beyond the ends of the beams",
+    )
+
+
+@pytest.mark.parametrize(("schema", "unit", "force"), UNITS[1:])
+def test_a_varying_load_over_a_part(schema: str, unit: str, force: str) -> None:
+    """From 4 N/mm at 1.2 m to 9 N/mm at 4.8 m of a member that runs the other way."""
+    hall = Hall(schema, unit, force)
+    analysis = hall.analysis
+    member = analysis.member((6000.0, 0.0, 3000.0), (0.0, 0.0, 3000.0))
+    load = analysis.configured({1200.0: analysis.linear(z=-4.0), 4800.0: analysis.linear(z=-9.0)})
+    analysis.along(member, load, analysis.case("Live"), kind="LINEAR")
+    laid = only(hall.read())
+    assert (laid.start, laid.end) == pytest.approx((1200.0, 4800.0))
+    assert laid.values == pytest.approx((9.0, 4.0))
+
+
+def test_a_varying_linear_action_of_ifc2x3() -> None:
+    hall = Hall("IFC2X3", "METRE", "kN")
+    analysis = hall.analysis
+    member = analysis.member((0.0, 0.0, 3000.0), (6000.0, 0.0, 3000.0))
+    points = [analysis.make("IfcVertexPoint", analysis.point(x, 0.0, 3000.0))
+              for x in (0.0, 3000.0, 6000.0)]  # fmt: skip
+    shape = analysis.make("IfcTopologyRepresentation", analysis.context, "Loads", "Vertex", points)
+    aspect = analysis.make("IfcShapeAspect", [shape], None, None, False, member.Representation)
+    action = analysis.root(
+        "IfcStructuralLinearActionVarying", Name="Heap", AppliedLoad=analysis.linear(z=-1.0),
+        GlobalOrLocal="GLOBAL_COORDS", DestabilizingLoad=False, ProjectedOrTrue="TRUE_LENGTH",
+        VaryingAppliedLoadLocation=aspect,
+        SubsequentAppliedLoads=[analysis.linear(z=-5.0), analysis.linear(z=-2.0)],
+    )  # fmt: skip
+    analysis.root(
+        "IfcRelConnectsStructuralActivity", RelatingElement=member, RelatedStructuralActivity=action
+    )
+    analysis.group(analysis.case("Live"), action)
+    first, second = hall.read().loads.laid
+    assert (first.start, first.end, second.end) == pytest.approx((0.0, 3000.0, 6000.0))
+    assert (*first.values, *second.values) == pytest.approx((1.0, 5.0, 5.0, 2.0))
+
+
+@pytest.mark.parametrize("kind", ["POLYGONAL", "EQUIDISTANT"])
+def test_a_polygon_of_loads(kind: str) -> None:
+    hall = Hall()
+    analysis = hall.analysis
+    member = analysis.member((0.0, 0.0, 3000.0), (6000.0, 0.0, 3000.0))
+    values = [analysis.linear(z=-value) for value in (2.0, 8.0, 4.0)]
+    load = analysis.configured(list(zip((0.0, 3000.0, 6000.0), values, strict=True)))
+    if kind == "EQUIDISTANT":
+        load.Locations = None
+    analysis.along(member, load, analysis.case("Live"), kind=kind)
+    first, second = hall.read().loads.laid
+    assert (first.start, first.end, second.end) == pytest.approx((0.0, 3000.0, 6000.0))
+    assert (*first.values, *second.values) == pytest.approx((2.0, 8.0, 8.0, 4.0))
+
+
+def test_single_forces_along_a_member() -> None:
+    hall = Hall("IFC4X3", "FOOT", "kip")
+    analysis = hall.analysis
+    member = analysis.member((6000.0, 0.0, 3000.0), (0.0, 0.0, 3000.0))
+    load = analysis.configured({1000.0: analysis.single(z=-5e3), 2500.0: analysis.single(z=-7e3)})
+    analysis.along(member, load, analysis.case("Live"), kind="DISCRETE")
+    found = [(one.kind, round(one.start, 6), *one.values) for one in hall.read().loads.laid]
+    assert found == [
+        ("point", 5000.0, pytest.approx(5e3), pytest.approx(5e3)),
+        ("point", 3500.0, pytest.approx(7e3), pytest.approx(7e3)),
+    ]
+
+
+def test_an_action_with_a_line_and_one_with_a_point_of_its_own() -> None:
+    hall = Hall("IFC4", "INCH", "lbf")
+    analysis = hall.analysis
+    member, case = analysis.member((0, 0, 3000), (6000, 0, 3000)), analysis.case("Live")
+    part = analysis.edge((3500.0, 0.0, 3000.0), (1500.0, 0.0, 3000.0))
+    analysis.along(member, analysis.linear(z=-3.0), case, shape=part)
+    analysis.at(member, analysis.single(z=-9e3), case, shape=analysis.vertex((2100, 0, 3000)))
+    line, point = sorted(hall.read().loads.laid)
+    assert (line.start, line.end) == pytest.approx((1500.0, 3500.0))
+    assert (point.kind, point.start) == ("point", pytest.approx(2100.0))
+    assert point.values[0] == pytest.approx(9e3)
+
+
+@pytest.mark.parametrize("projected", [True, False])
+def test_a_projected_load_on_a_slope_counts_per_true_length(projected: bool) -> None:
+    """Rise 3 to 4 along: 10 N/mm of plan are 8 N/mm of the beam, 48 kN on 4.8 m of plan."""
+    hall = Hall("IFC4X3", "METRE", "kN", along=(0.8, 0.0, 0.6))
+    analysis = hall.analysis
+    member = analysis.member((0.0, 0.0, 3000.0), (4800.0, 0.0, 6600.0))
+    analysis.along(member, analysis.linear(**DOWN), analysis.case("Snow"), projected=projected)
+    model = hall.read()
+    laid = only(model)
+    assert laid.values == pytest.approx((8.0, 8.0) if projected else (10.0, 10.0))
+    assert (laid.start, laid.end) == pytest.approx((0.0, 6000.0))
+    assert not model.loads.doubts
+
+
+def test_local_axes_of_a_member() -> None:
+    """Its own z is the beam's up; across a slope it acts along the building too."""
+    hall = Hall()
+    analysis = hall.analysis
+    member = analysis.member((6000.0, 0.0, 3000.0), (0.0, 0.0, 3000.0), axis=(0.0, 0.0, 1.0))
+    analysis.along(member, analysis.linear(**DOWN), analysis.case("Live"), local=True)
+    assert only(hall.read()).values == pytest.approx((10.0, 10.0))
+    hall = Hall(along=(0.8, 0.0, 0.6))
+    member = hall.analysis.member((0, 0, 3000), (4800, 0, 6600), axis=(0, 0, 1))
+    hall.analysis.along(
+        member, hall.analysis.linear(**DOWN), hall.analysis.case("Wind"), local=True
+    )
+    model = hall.read()
+    assert only(model).values == pytest.approx((8.0, 8.0))
+    assert "acts sideways or along the beam" in doubts(model)
+
+
+def test_local_axes_of_ifc2x3_are_not_told() -> None:
+    hall = Hall("IFC2X3")
+    member = hall.analysis.member((0.0, 0.0, 3000.0), (6000.0, 0.0, 3000.0))
+    hall.analysis.along(
+        member, hall.analysis.linear(**DOWN), hall.analysis.case("Live"), local=True
+    )
+    model = hall.read()
+    assert not model.loads.laid
+    assert "cannot be read" in doubts(model)
+
+
+@pytest.mark.parametrize("schema", ["IFC4", "IFC4X3"])
+def test_factors_multiply_from_group_to_group(schema: str) -> None:
+    """-0.5 by the relation, 2 by the group's coefficient, 3 by the relation to the case."""
+    hall = Hall(schema)
+    analysis = hall.analysis
+    member, case = analysis.member((0, 0, 3000), (6000, 0, 3000)), analysis.case("Live")
+    group = analysis.load_group("Part", Coefficient=2.0)
+    action = analysis.along(member, analysis.linear(**DOWN))
+    analysis.group(group, action, factor=-0.5)
+    analysis.group(case, group, factor=3.0)
+    combination = analysis.load_group("Strength", "LOAD_COMBINATION")
+    analysis.group(combination, case, factor=1.5)
+    model = hall.read()
+    laid = only(model)
+    assert laid.case == "Live"
+    assert laid.values == pytest.approx((-30.0, -30.0))
+    assert laid.acts_upward
+    assert "factor -3 included" in laid.text
+
+
+def test_a_case_has_its_own_coefficient_and_says_so() -> None:
+    hall = Hall("IFC4X3")
+    analysis = hall.analysis
+    member = analysis.member((0, 0, 3000), (6000, 0, 3000))
+    case = analysis.case("Live", Coefficient=0.5)
+    analysis.along(member, analysis.linear(**DOWN), case)
+    model = hall.read()
+    assert only(model).values == pytest.approx((5.0, 5.0))
+    assert case_of(model, "Live").notes == ("its coefficient 0.5 is in the loads",)
+
+
+@pytest.mark.parametrize("schema", ["IFC2X3", "IFC4"])
+def test_a_group_of_the_same_name_leads_to_the_case(schema: str) -> None:
+    hall = Hall(schema)
+    analysis = hall.analysis
+    member = analysis.member((0, 0, 3000), (6000, 0, 3000))
+    analysis.case("LC 2 - Live", Coefficient=2.0)
+    analysis.along(member, analysis.linear(**DOWN), analysis.load_group("LC 2 - Live"))
+    model = hall.read()
+    assert only(model).case == "LC 2 - Live"
+    assert only(model).values == pytest.approx((20.0, 20.0))
+    case = case_of(model, "LC 2 - Live")
+    assert case.actions == 1
+    assert any("only through a group of the same name" in note for note in case.notes)
+
+
+def test_a_group_that_no_case_holds_stands_for_itself() -> None:
+    hall = Hall()
+    member = hall.analysis.member((0, 0, 3000), (6000, 0, 3000))
+    hall.analysis.along(member, hall.analysis.linear(**DOWN), hall.analysis.load_group("Roof"))
+    assert only(hall.read()).case == "Roof"
+
+
+def test_an_action_of_no_case_is_counted() -> None:
+    hall = Hall()
+    member = hall.analysis.member((0, 0, 3000), (6000, 0, 3000))
+    hall.analysis.along(member, hall.analysis.linear(**DOWN))
+    model = hall.read()
+    assert only(model).case == ""
+    assert case_of(model, "").actions == 1
+
+
+def test_self_weight_of_a_case_is_told_and_not_taken() -> None:
+    hall = Hall("IFC4")
+    hall.analysis.case("Dead", "PERMANENT_G", SelfWeightCoefficients=[0.0, 0.0, -1.0])
+    model = hall.read()
+    (note,) = case_of(model, "Dead").notes
+    assert "self weight (coefficients 0, 0, -1) is not taken" in note
+    assert case_of(model, "Dead").permanent is True
+    assert not model.loads.laid
+
+
+def test_one_member_over_two_beams_and_beyond() -> None:
+    """From 1 m before the first to 2 m beyond the second, with a load that grows by 1 per metre."""
+    hall = Hall("IFC4X3", "METRE", beams=2)
+    analysis = hall.analysis
+    member = analysis.member((-1000.0, 0.0, 3000.0), (14000.0, 0.0, 3000.0))
+    load = analysis.configured({0.0: analysis.linear(z=0.0), 15000.0: analysis.linear(z=-15.0)})
+    analysis.along(member, load, analysis.case("Live"), kind="LINEAR")
+    model = hall.read()
+    first, second = model.loads.laid
+    assert (first.start, first.end) == pytest.approx((-1000.0, 14000.0))
+    assert (second.start, second.end) == pytest.approx((-7000.0, 8000.0))
+    (lost,) = case_of(model, "Live").lost
+    total = 15.0 * 15.0 / 2.0
+    beyond = 0.95**2 / 2.0 + (15.0**2 - 13.05**2) / 2.0  # 50 mm of tolerance at either end
+    assert lost.startswith(f"{beyond:.1f} kN of {total:.0f} kN act on no beam")
+
+
+def test_nodes_within_a_beam_at_its_end_and_elsewhere() -> None:
+    hall = Hall("IFC4", "FOOT", "kip")
+    analysis, case = hall.analysis, hall.analysis.case("Plant")
+    for place in ((2000.0, 0.0, 3000.0), (6000.0, 0.0, 3000.0), (2000.0, 4000.0, 3000.0)):
+        analysis.at(analysis.node(place), analysis.single(z=-8e3), case)
+    model = hall.read()
+    assert sorted(one.start for one in model.loads.laid) == pytest.approx([2000.0, 6000.0])
+    assert case_of(model, "Plant").lost[0].startswith("8.00 kN of 24.0 kN act on no beam")
+
+
+def test_a_moment_about_the_beams_own_horizontal_and_what_twists_it() -> None:
+    """+12 kN*m about Y turns z into x: clockwise seen with the start to the left, so -12."""
+    hall = Hall("IFC4X3", "METRE", "kN")
+    analysis, case = hall.analysis, hall.analysis.case("Plant")
+    member = analysis.member((6000.0, 0.0, 3000.0), (0.0, 0.0, 3000.0))
+    place = analysis.vertex((1500.0, 0.0, 3000.0))
+    analysis.at(member, analysis.single(my=12e6), case, shape=place)
+    model = hall.read()
+    laid = only(model)
+    assert (laid.kind, laid.start) == ("moment", pytest.approx(1500.0))
+    assert laid.values[0] == pytest.approx(-12e6)
+    assert not model.loads.doubts
+    analysis.at(member, analysis.single(z=-1e3, mx=2e6), case, shape=place)
+    assert "twists the beam or bends it sideways" in doubts(hall.read())
+
+
+@pytest.mark.parametrize(
+    ("components", "told"),
+    [
+        ({"x": 3.0, "z": -10.0}, "acts sideways or along the beam"),
+        ({"y": 3.0}, "acts sideways or along the beam"),
+        ({"z": -10.0, "mx": 50.0}, "has moments per length"),
+    ],
+)
+def test_what_does_not_act_downward_is_a_doubt(components: dict[str, float], told: str) -> None:
+    hall = Hall()
+    member = hall.analysis.member((0, 0, 3000), (6000, 0, 3000))
+    hall.analysis.along(member, hall.analysis.linear(**components), hall.analysis.case("Wind"))
+    model = hall.read()
+    assert told in doubts(model)
+    down = -components.get("z", 0.0)
+    assert [one.values[0] for one in model.loads.laid] == ([pytest.approx(down)] if down else [])
+
+
+def test_the_placement_that_all_items_share_moves_and_turns_them() -> None:
+    """The analysis model has its own axes: turned by 90 degrees, moved by (0, 0, 3000)."""
+    hall = Hall("IFC4X3", shared=((0.0, 0.0, 3000.0), (0.0, 0.0, 1.0), (0.0, 1.0, 0.0)))
+    analysis = hall.analysis
+    member = analysis.member((0.0, 0.0, 0.0), (0.0, -6000.0, 0.0))
+    analysis.along(member, analysis.linear(z=-10.0, x=2.0), analysis.case("Live"))
+    model = hall.read()
+    assert (only(model).start, only(model).end) == pytest.approx((0.0, 6000.0))
+    assert only(model).values == pytest.approx((10.0, 10.0))
+    assert "acts sideways" in doubts(model)
+
+
+@pytest.mark.parametrize(
+    ("unit", "force", "value", "doubtful"),
+    [
+        ("METRE", "N", 10.0, False),  # N/m either way
+        ("METRE", "kN", 10.0, True),  # kN/m is more than N/m
+        ("MILLIMETRE", "N", 10.0, True),  # N/mm is more than N/m
+    ],
+)
+def test_a_unit_of_force_per_length_that_is_not_declared_is_a_doubt(
+    unit: str, force: str, value: float, doubtful: bool
+) -> None:
+    hall = Hall("IFC4", unit, force, declared=False)
+    member = hall.analysis.member((0, 0, 3000), (6000, 0, 3000))
+    hall.analysis.along(member, hall.analysis.linear(z=-value), hall.analysis.case("Live"))
+    model = hall.read()
+    assert only(model).values[0] == pytest.approx(value)
+    assert ("declares no unit of force per length" in doubts(model)) is doubtful
+
+
+def test_actions_on_surfaces_are_told_apart() -> None:
+    hall = Hall("IFC4X3")
+    hall.analysis.over(hall.analysis.surface(), hall.analysis.case("Live"))
+    model = hall.read()
+    assert not model.loads.laid
+    assert case_of(model, "Live").uncarried == ("1 action: acts on a surface",)
+
+
+@pytest.mark.parametrize("kind", ["SINUS", "PARABOLA", "USERDEFINED"])
+def test_a_course_of_loads_that_is_not_read_is_a_doubt_of_the_beam(kind: str) -> None:
+    hall = Hall()
+    analysis = hall.analysis
+    member = analysis.member((0, 0, 3000), (6000, 0, 3000))
+    load = analysis.configured({0.0: analysis.linear(**DOWN), 6000.0: analysis.linear(**DOWN)})
+    analysis.along(member, load, analysis.case("Live"), kind=kind)
+    model = hall.read()
+    assert not model.loads.laid
+    assert f"values that are {kind} are not read" in doubts(model)
+
+
+def test_a_member_that_is_tied_and_runs_across_is_a_doubt() -> None:
+    hall = Hall()
+    member = hall.analysis.member((3000, -2000, 3000), (3000, 2000, 3000))
+    hall.analysis.tie(member, hall.beams[0])
+    hall.analysis.along(member, hall.analysis.linear(**DOWN), hall.analysis.case("Live"))
+    model = hall.read()
+    assert not model.loads.laid
+    assert "does not run along the beam that it is tied to" in doubts(model)
+
+
+def test_a_column_member_under_the_end_is_no_beam() -> None:
+    hall = Hall()
+    member = hall.analysis.member((0, 0, 0), (0, 0, 3000))
+    hall.analysis.along(member, hall.analysis.linear(x=5.0), hall.analysis.case("Wind"))
+    model = hall.read()
+    assert not model.loads.laid
+    assert not model.loads.doubts
+
+
+def test_a_model_without_analysis_has_none() -> None:
+    building = Building()
+    building.beam(building.extrusion(building.rectangle(), 6000.0))
+    assert building.read().loads.cases == ()
+
+
+def test_pounds_per_inch_by_hand() -> None:
+    """100 lbf/in are 17.51 kN/m."""
+    hall = Hall("IFC4", "INCH", "lbf")
+    member = hall.analysis.member((0, 0, 3000), (6000, 0, 3000))
+    load = hall.analysis.make("IfcStructuralLoadLinearForce", LinearForceZ=-100.0)
+    hall.analysis.along(member, load, hall.analysis.case("Live"))
+    assert only(hall.read()).values[0] == pytest.approx(100.0 * POUND_FORCE / 25.4)
+    assert math.isclose(100.0 * POUND_FORCE / 25.4, 17.5127, rel_tol=1e-5)
