@@ -9,22 +9,19 @@ import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
 
-from ifccheck.analysis.effects import (
+from ifccheck.analysis.arrangements import (
     GREATEST_MOMENT,
     GREATEST_SHEAR,
     LEAST_MOMENT,
     LEAST_SHEAR,
-    Effects,
-    case_peaks,
-    case_share,
-    combine,
-    demands,
-    turning_places,
 )
+from ifccheck.analysis.effects import Effects, case_share, combine, demands
 from ifccheck.analysis.loads import LINE, MOMENT, POINT, LoadTable, by_beam
+from ifccheck.analysis.peaks import case_peaks
 from ifccheck.analysis.spans import FIXED, FREE, PINNED, SpanTable
 from ifccheck.analysis.statics import CaseEffects, case_effects
 from ifccheck.analysis.stations import Places, StationTable, critical_rows, make_stations, places
+from ifccheck.analysis.turns import turning_places
 
 PAIRS = (
     (PINNED, PINNED),

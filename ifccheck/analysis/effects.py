@@ -3,7 +3,9 @@
 In each combination and at each station four arrangements of the cases are looked at: those
 that give the greatest and the least moment, and the greatest and the least shear. A case takes
 its unfavourable or its favourable factor as a whole, by its own effect on that extreme; a case
-without effect on it takes the factor that makes the accompanying effect worse.
+without effect on it takes the factor that makes the accompanying effect worse. A case that
+moves stands in each arrangement where it makes the extreme greatest; parts of a case take their
+factors each for itself.
 """
 
 from __future__ import annotations
@@ -13,12 +15,17 @@ from dataclasses import dataclass, replace
 
 import numpy as np
 
+from ifccheck.analysis.arrangements import (
+    ARRANGEMENTS,
+    GREATEST_MOMENT,
+    GREATEST_SHEAR,
+    LEAST_MOMENT,
+    put_in,
+    weighted,
+)
+from ifccheck.analysis.peaks import case_peaks
 from ifccheck.analysis.statics import CaseEffects
-from ifccheck.analysis.stations import starts
 from ifccheck.mechanics.arrays import Bools, Demand, Floats, Ints
-
-GREATEST_MOMENT, LEAST_MOMENT, GREATEST_SHEAR, LEAST_SHEAR = range(4)
-ARRANGEMENTS = 4
 
 
 @dataclass(frozen=True, slots=True)
@@ -54,13 +61,12 @@ def combine(cases: CaseEffects, factors: Floats) -> Effects:
         Unfavourable and favourable factor of each case (C, K, 2).
     """
     greater, lesser = factors.max(axis=2), factors.min(axis=2)
-    both = np.stack([cases.moment, cases.shear], axis=1)
-    together = np.zeros((2, len(factors), ARRANGEMENTS, both.shape[-1]))
+    arranged = _arranged(cases, slice(None))
+    together = np.zeros((2, len(factors), ARRANGEMENTS, cases.x.size))
     full = np.empty((ARRANGEMENTS, *cases.moment.shape), np.bool_)
     upward = np.ones(together.shape[1:], np.bool_)
-    one_alone = (both[:, 0] == 0.0) != (both[:, 1] == 0.0)
-    idle = np.flatnonzero(one_alone.any(axis=0))
-    for arrangement in range(ARRANGEMENTS):
+    idle = _idle_stations(arranged if cases.moving else arranged[:1])
+    for arrangement, both in enumerate(arranged):
         own, most = _driving(arrangement)
         np.copyto(full[arrangement], both[:, own] > 0.0 if most else both[:, own] < 0.0)
         _add_weighted(together[:, :, arrangement], greater, lesser, both, full[arrangement])
@@ -72,6 +78,28 @@ def combine(cases: CaseEffects, factors: Floats) -> Effects:
             )
     moment, shear = together
     return Effects(cases, greater, lesser, moment, shear, full, upward, idle)
+
+
+def _arranged(cases: CaseEffects, rows: slice) -> list[Floats]:
+    """Moment and shear of some cases (R, 2, N) in each arrangement."""
+    if cases.moving is None:
+        return [_both(cases.moment, cases.shear, rows)] * ARRANGEMENTS
+    return [
+        _both(*put_in(cases.moving, arrangement, cases.moment, cases.shear), rows)
+        for arrangement in range(ARRANGEMENTS)
+    ]
+
+
+def _both(moment: Floats, shear: Floats, rows: slice) -> Floats:
+    return np.stack([moment[rows], shear[rows]], axis=1)
+
+
+def _idle_stations(arranged: Sequence[Floats]) -> Ints:
+    """Where some case has a moment but no shear, or a shear but no moment."""
+    found = np.zeros(arranged[0].shape[-1], np.bool_)
+    for both in arranged:
+        found |= ((both[:, 0] == 0.0) != (both[:, 1] == 0.0)).any(axis=0)
+    return np.flatnonzero(found)
 
 
 def _driving(arrangement: int) -> tuple[int, bool]:
@@ -96,14 +124,6 @@ def _add_weighted(
                     total[:, combination] += factor * part
 
 
-def _weighted(factors: Floats, effects: Floats) -> Floats:
-    """Sum of the cases' effects (K, N), each times its factor (C, K), for every combination.
-
-    Not a matrix product, which would wake a pool of threads for a sum over few cases.
-    """
-    return np.asarray(np.einsum("ck,kn->cn", factors, effects))
-
-
 def _with_idle(beside: Floats, idle: Floats, more: Floats) -> tuple[Floats, Bools]:
     """What acts with an extreme on which some cases have no effect: the worse of the two ways
     that those may go together (C, M), and whether that is upward.
@@ -117,19 +137,37 @@ def _with_idle(beside: Floats, idle: Floats, more: Floats) -> tuple[Floats, Bool
     more
         By how much the greater factor of each case exceeds the lesser (C, K).
     """
-    highest = beside + _weighted(more, np.maximum(idle, 0.0))
-    lowest = beside + _weighted(more, np.minimum(idle, 0.0))
+    highest = beside + weighted(more, np.maximum(idle, 0.0))
+    lowest = beside + weighted(more, np.minimum(idle, 0.0))
     upward = np.abs(highest) >= np.abs(lowest)
     return np.where(upward, highest, lowest), upward
 
 
-def case_share(effects: Effects, case: int) -> tuple[Floats, Floats]:
-    """The part that one case has in moment and shear of every arrangement (C, 4, N)."""
-    both = np.stack([effects.cases.moment[case], effects.cases.shear[case]])
+def case_share(effects: Effects, case: int, parts: Ints | None = None) -> tuple[Floats, Floats]:
+    """The part that one case has in moment and shear of every arrangement (C, 4, N).
+
+    Parameters
+    ----------
+    effects
+        Of all rows of cases, or of parts of cases.
+    case
+        The case.
+    parts
+        Case of each row of the effects, where cases were split into parts.
+    """
+    rows = [case] if parts is None else np.flatnonzero(parts == case).tolist()
+    share = _row_share(effects, rows[0])
+    for row in rows[1:]:
+        share += _row_share(effects, row)
+    return share[0], share[1]
+
+
+def _row_share(effects: Effects, row: int) -> Floats:
+    """The part of one row in moment and shear of every arrangement (2, C, 4, N)."""
     share = np.zeros((2, *effects.moment.shape))
-    greater, lesser = effects.greater[:, [case]], effects.lesser[:, [case]]
-    for arrangement in range(ARRANGEMENTS):
-        full = effects.full[arrangement, case]
+    greater, lesser = effects.greater[:, [row]], effects.lesser[:, [row]]
+    for arrangement, (both,) in enumerate(_arranged(effects.cases, slice(row, row + 1))):
+        full = effects.full[arrangement, row]
         _add_weighted(share[:, :, arrangement], greater, lesser, both[None], full[None])
         own, _ = _driving(arrangement)
         idle = np.flatnonzero((both[own] == 0.0) & (both[1 - own] != 0.0))
@@ -137,7 +175,7 @@ def case_share(effects: Effects, case: int) -> tuple[Floats, Floats]:
             other = both[1 - own, idle]
             rising = effects.upward[:, arrangement, idle] == (other > 0.0)
             share[1 - own, :, arrangement, idle] = (np.where(rising, greater, lesser) * other).T
-    return share[0], share[1]
+    return share
 
 
 @dataclass(frozen=True, slots=True)
@@ -160,6 +198,7 @@ def demands(
     critical: Ints,
     scaled: Sequence[int] = (),
     unbounded: Bools | None = None,
+    parts: Ints | None = None,
 ) -> Demands:
     """What acts at each station in every arrangement.
 
@@ -176,6 +215,9 @@ def demands(
     unbounded
         Beams on which the greatest moment bounds nothing: their peaks are infinite, where they
         are not nothing (B).
+    parts
+        Case of each row of the effects, where cases were split into parts (K'): the share of a
+        case is the sum over its parts.
 
     Notes
     -----
@@ -183,9 +225,9 @@ def demands(
     arrangement, the reaction compresses the end whatever a scaled case is multiplied by; else
     the station's own shear is checked.
     """
-    parts = [case_share(effects, case) for case in scaled]
-    serves = _compressed(effects, critical, [shear for _, shear in parts])
-    sag, hog = _reversible(effects, [moment for moment, _ in parts])
+    own = [case_share(effects, case, parts) for case in scaled]
+    serves = _compressed(effects, critical, [shear for _, shear in own])
+    sag, hog = _reversible(effects, [moment for moment, _ in own])
     sagging, hogging = case_peaks(effects.cases)
     shape = effects.moment.shape
     station_beam = effects.cases.beam
@@ -195,8 +237,8 @@ def demands(
             moment=moment,
             shear=shear,
             critical_shear=_critical_shear(shear, critical, serves),
-            peak_sagging=_spread(_weighted(factors, sagging[rows]), station_beam, shape),
-            peak_hogging=_spread(_weighted(factors, hogging[rows]), station_beam, shape),
+            peak_sagging=_spread(weighted(factors, sagging[rows]), station_beam, shape),
+            peak_hogging=_spread(weighted(factors, hogging[rows]), station_beam, shape),
             can_sag=np.broadcast_to(sag, shape),
             can_hog=np.broadcast_to(hog, shape),
         )
@@ -205,9 +247,11 @@ def demands(
     total = demand_of(effects.moment, effects.shear, effects.greater, every)
     if unbounded is not None and unbounded.any():
         total = _without_bounds(total, unbounded[station_beam])
+    rows_of = every if parts is None else parts
+    of = [np.flatnonzero(rows_of == case) for case in scaled]
     shares = tuple(
-        demand_of(moment, shear, effects.greater[:, [case]], np.array([case]))
-        for case, (moment, shear) in zip(scaled, parts, strict=True)
+        demand_of(moment, shear, effects.greater[:, rows], rows)
+        for rows, (moment, shear) in zip(of, own, strict=True)
     )
     return Demands(total, tuple(scaled), shares, critical)
 
@@ -287,117 +331,3 @@ def _beside(flag: Bools, beam: Ints) -> Bools:
         found[step:] |= same & flag[:-step]
         found[:-step] |= same & flag[step:]
     return found
-
-
-def case_peaks(cases: CaseEffects) -> tuple[Floats, Floats]:
-    """Upper bounds of the sagging and of the hogging moment of each case (K, B), both >= 0.
-
-    Between two stations the moment of a steady load stays below the tangents at both.
-    """
-    peaks = np.zeros((2, *cases.end_moments.shape[:2]))
-    if cases.moment.size:
-        first = starts(cases.beam)
-        beams = cases.beam[first]
-        peaks[0, :, beams] = np.maximum.reduceat(cases.moment, first, axis=1).T
-        peaks[1, :, beams] = -np.minimum.reduceat(cases.moment, first, axis=1).T
-        for peak, sign in zip(peaks, (1.0, -1.0), strict=True):
-            case, beam, bound = _bounds_between(cases, sign)
-            np.maximum.at(peak, (case, beam), bound)
-    sagging, hogging = np.maximum(peaks, 0.0)
-    return sagging, hogging
-
-
-def _bounds_between(cases: CaseEffects, sign: float) -> tuple[Ints, Ints, Floats]:
-    """Upper bounds of the sagging (sign 1) or hogging (sign -1) moment between two stations where
-    the shear of a case turns: the cases, beams and bounds."""
-    rising, falling = cases.shear[:, :-1] * sign > 0.0, cases.shear[:, 1:] * sign < 0.0
-    gap = np.diff(cases.x)
-    held = (cases.beam[1:] == cases.beam[:-1]) & (gap > 0.0)
-    case, row = np.nonzero(rising & falling & held)
-    before, after = cases.shear[case, row] * sign, cases.shear[case, row + 1] * sign
-    low, high, width = cases.moment[case, row] * sign, cases.moment[case, row + 1] * sign, gap[row]
-    reach = np.clip((high - low - after * width) / (before - after), 0.0, width)
-    return case, cases.beam[row], np.maximum(low + before * reach, low)
-
-
-@dataclass(frozen=True, slots=True)
-class Turns:
-    """Places between stations where the moment of a combination, or of a case alone, turns (T)."""
-
-    row: Ints
-    """Station before each"""
-    beam: Ints
-    x: Floats
-    """[mm]"""
-    moment: Floats
-    """About what it reaches there, sagging positive [N*mm]"""
-
-    def take(self, rows: Ints | Bools) -> Turns:
-        """Some of them."""
-        return Turns(self.row[rows], self.beam[rows], self.x[rows], self.moment[rows])
-
-    def places(self) -> tuple[Ints, Floats]:
-        """Row of the beam and x [mm] of each place, once, sorted: to be made stations."""
-        x = np.round(self.x, 3)
-        order = np.lexsort((x, self.beam))
-        beam, x = self.beam[order], x[order]
-        new: Bools = np.ones(len(x), np.bool_)
-        new[1:] = (beam[1:] != beam[:-1]) | (x[1:] != x[:-1])
-        return beam[new], x[new]
-
-
-def turning_places(cases: CaseEffects, factors: Floats, *, alone: bool = True) -> Turns:
-    """Places between stations where the moment of a combination, or of a case alone, turns.
-
-    Between two stations a case keeps the factor that fits the sum of its moments at both, and
-    the shear is taken as a straight line.
-
-    Parameters
-    ----------
-    cases
-        Effects of each case alone at stations (K, N).
-    factors
-        Unfavourable and favourable factor of each case (C, K, 2).
-    alone
-        Whether the moments of the cases alone are looked at, too.
-    """
-    greater, lesser = factors.max(axis=2), factors.min(axis=2)
-    if alone:
-        single = np.eye(greater.shape[1])
-        greater, lesser = np.concatenate([greater, single]), np.concatenate([lesser, single])
-    found = [_turns(cases, greater, lesser, sign) for sign in (1.0, -1.0)]
-    return Turns(
-        *(np.concatenate([getattr(part, name) for part in found]) for name in Turns.__slots__)
-    )
-
-
-def _turns(cases: CaseEffects, greater: Floats, lesser: Floats, sign: float) -> Turns:
-    """Where the greatest sagging (sign 1) or hogging (sign -1) moment lies within an interval."""
-    rows = _may_turn(cases, sign) if lesser.min(initial=0.0) >= 0.0 else np.arange(cases.x.size - 1)
-    gap = cases.x[rows + 1] - cases.x[rows]
-    rows = rows[(cases.beam[rows + 1] == cases.beam[rows]) & (gap > 1.0)]
-    moment, after = (cases.moment.take(at, axis=1) * sign for at in (rows, rows + 1))
-    worse: Bools = moment + after > 0.0
-
-    def combined(effect: Floats) -> Floats:
-        return _weighted(greater, effect * worse) + _weighted(lesser, effect * ~worse)
-
-    first, last = (combined(cases.shear.take(at, axis=1) * sign) for at in (rows, rows + 1))
-    combination, interval = np.nonzero((first > 0.0) & (last < 0.0))
-    before, beyond = first[combination, interval], last[combination, interval]
-    full = np.where(worse[:, interval], greater.T[:, combination], lesser.T[:, combination])
-    start = (full * moment[:, interval]).sum(axis=0)
-    at = rows[interval]
-    part, width = before / (before - beyond), cases.x[at + 1] - cases.x[at]
-    apex = start + before * part * width / 2.0
-    inner: Bools = (part > 1e-3) & (part < 1.0 - 1e-3) & (apex > 0.0)
-    found = Turns(at, cases.beam[at], cases.x[at] + part * width, apex * sign)
-    return found.take(inner)
-
-
-def _may_turn(cases: CaseEffects, sign: float) -> Ints:
-    """Intervals at whose start some case's shear raises the moment of that sense and at whose end
-    some case's lowers it: no sum of theirs, each times a factor not below 0, turns elsewhere."""
-    rising: Bools = np.any(cases.shear * sign > 0.0, axis=0)
-    falling: Bools = np.any(cases.shear * sign < 0.0, axis=0)
-    return np.flatnonzero(rising[:-1] & falling[1:])

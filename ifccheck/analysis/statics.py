@@ -11,6 +11,7 @@ from dataclasses import dataclass, replace
 
 import numpy as np
 
+from ifccheck.analysis.arrangements import MovingEffects, join_moving
 from ifccheck.analysis.brackets import Brackets, Sections, sum_brackets
 from ifccheck.analysis.loads import LINE, MOMENT, POINT, LoadTable, join_loads
 from ifccheck.analysis.spans import FIXED, FREE, PINNED, SpanTable, alone, require_standing
@@ -43,6 +44,8 @@ class CaseEffects:
     """Upward force of the start and the end support on the beam [N] (K, B, 2)"""
     end_moments: Floats
     """Moment just inside the start and the end of the span [N*mm] (K, B, 2)"""
+    moving: MovingEffects | None = None
+    """Cases that move, whose rows above are 0; None where none does"""
 
 
 @dataclass(frozen=True, slots=True)
@@ -345,6 +348,7 @@ def join_effects(first: CaseEffects, second: CaseEffects, rows: Ints) -> CaseEff
         deflection=deflection,
         reactions=first.reactions,
         end_moments=first.end_moments,
+        moving=join_moving(first.moving, second.moving, rows),
     )
 
 

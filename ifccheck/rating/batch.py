@@ -8,7 +8,7 @@ from typing import Any
 
 import numpy as np
 
-from ifccheck.analysis.effects import (
+from ifccheck.analysis.arrangements import (
     GREATEST_MOMENT,
     GREATEST_SHEAR,
     LEAST_MOMENT,

@@ -8,7 +8,7 @@ from dataclasses import dataclass
 import numpy as np
 
 from ifccheck.analysis.combinations import factor_array
-from ifccheck.analysis.effects import Demands, Effects, combine, demands, turning_places
+from ifccheck.analysis.effects import Demands, Effects, combine, demands
 from ifccheck.analysis.loads import LINE
 from ifccheck.analysis.spans import FREE
 from ifccheck.analysis.statics import Solved, effects_at, join_effects, solve
@@ -23,6 +23,7 @@ from ifccheck.analysis.stations import (
     places,
 )
 from ifccheck.analysis.stiffness import with_varying_stiffness
+from ifccheck.analysis.turns import turning_places
 from ifccheck.beam import Case, Combination
 from ifccheck.mechanics.arrays import Bools, Floats, Members, Stations
 from ifccheck.rating.assembly import Frame, make_station_arrays, within

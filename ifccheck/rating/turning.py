@@ -12,9 +12,10 @@ from typing import TypeVar
 
 import numpy as np
 
-from ifccheck.analysis.effects import Turns, combine, demands, turning_places
+from ifccheck.analysis.effects import combine, demands
 from ifccheck.analysis.statics import effects_at
 from ifccheck.analysis.stations import StationTable, rows_before
+from ifccheck.analysis.turns import Turns, turning_places
 from ifccheck.mechanics.arrays import Bools, Demand, Floats, Ints
 from ifccheck.rating.assembly import make_station_arrays
 from ifccheck.rating.elements import distinct_elements
