@@ -35,6 +35,8 @@ class ActionDoubt(NamedTuple):
     beam: str
     case: str
     text: str
+    only_near: bool = False
+    """It acts near the beam, and whether on it is what the engineer may know"""
 
 
 @dataclass(frozen=True, slots=True)

@@ -255,7 +255,7 @@ def test_a_group_of_the_same_name_leads_to_the_case(schema: str) -> None:
     assert only(model).values == pytest.approx((20.0, 20.0))
     case = case_of(model, "LC 2 - Live")
     assert case.actions == 1
-    assert any("only through a group of the same name" in note for note in case.notes)
+    assert "1 action: reached only through a group of the same name" in case.notes
 
 
 def test_a_group_that_no_case_holds_stands_for_itself() -> None:
@@ -381,7 +381,7 @@ def test_actions_on_surfaces_are_told_apart() -> None:
     hall.analysis.over(hall.analysis.surface(), hall.analysis.case("Live"))
     model = hall.read()
     assert not model.loads.laid
-    assert case_of(model, "Live").uncarried == ("1 action: acts on a surface",)
+    assert case_of(model, "Live").uncarried == ("1 action: on a surface, not carried to beams",)
 
 
 @pytest.mark.parametrize("kind", ["SINUS", "PARABOLA", "USERDEFINED"])
@@ -429,3 +429,131 @@ def test_pounds_per_inch_by_hand() -> None:
     hall.analysis.along(member, load, hall.analysis.case("Live"))
     assert only(hall.read()).values[0] == pytest.approx(100.0 * POUND_FORCE / 25.4)
     assert math.isclose(100.0 * POUND_FORCE / 25.4, 17.5127, rel_tol=1e-5)
+
+
+def near(model: Model) -> list[str]:
+    return [doubt.text for doubt in model.loads.doubts if doubt.only_near]
+
+
+def test_a_member_that_runs_near_a_beam_and_on_none_is_a_doubt_of_that_beam() -> None:
+    """An analysis model at the height of the floor must not lose its loads in silence."""
+    hall = Hall(beams=2)
+    member = hall.analysis.member((0, 0, 3450), (6000, 0, 3450))
+    hall.analysis.along(member, hall.analysis.linear(**DOWN), hall.analysis.case("Live"))
+    model = hall.read()
+    (told,) = near(model)
+    assert "acts near the beam, 150 mm off its body, and on no beam" in told
+    assert model.loads.doubts[0].beam == model.beams[0].key
+
+
+def test_it_is_none_where_another_beam_has_it_or_where_it_is_tied_to_another_member() -> None:
+    hall = Hall()
+    analysis, case = hall.analysis, hall.analysis.case("Live")
+    high = hall.building.placement((0.0, 0.0, 3900.0), (1.0, 0.0, 0.0), (0.0, 1.0, 0.0))
+    solid = hall.building.extrusion(hall.building.rectangle(300.0, 600.0), 6000.0)
+    hall.building.beam(solid, placement=high, Name="B-9")
+    member = analysis.member((0, 0, 3900), (6000, 0, 3900))
+    analysis.along(member, analysis.linear(**DOWN), case)
+    steel = hall.building.beam(material="Steel S235", Name="S-1")
+    beside = analysis.member((0, 400, 3000), (6000, 400, 3000), name="M-2")
+    analysis.tie(beside, steel)
+    analysis.along(beside, analysis.linear(**DOWN), case)
+    model = hall.read()
+    assert len(model.loads.laid) == 1
+    assert not near(model)
+
+
+def test_a_node_near_a_beam_is_a_doubt() -> None:
+    hall = Hall("IFC4X3", "METRE")
+    analysis = hall.analysis
+    node = analysis.node((2000, 0, 3450))
+    analysis.at(node, analysis.single(z=-4e3), analysis.case("Live"))
+    assert "150 mm off its body" in near(hall.read())[0]
+
+
+def test_a_node_of_a_tied_member_is_on_the_beam() -> None:
+    hall = Hall("IFC4X3", "METRE")
+    analysis = hall.analysis
+    node = analysis.node((2000, 0, 3450))
+    analysis.at(node, analysis.single(z=-4e3), analysis.case("Live"))
+    member = analysis.member((0, 0, 3450), (6000, 0, 3450))
+    analysis.tie(member, hall.beams[0])
+    analysis.root(
+        "IfcRelConnectsStructuralMember", RelatingStructuralMember=member,
+        RelatedStructuralConnection=node,
+    )  # fmt: skip
+    model = hall.read()
+    assert (only(model).kind, only(model).start) == ("point", pytest.approx(2000.0))
+    assert not model.loads.doubts
+
+
+def test_an_action_on_two_members_acts_on_both() -> None:
+    hall = Hall(beams=2)
+    analysis = hall.analysis
+    first = analysis.member((0, 0, 3000), (6000, 0, 3000))
+    second = analysis.member((6000, 0, 3000), (12000, 0, 3000), name="M-2")
+    action = analysis.along(first, analysis.linear(**DOWN), analysis.case("Live"))
+    analysis.root(
+        "IfcRelConnectsStructuralActivity", RelatingElement=second, RelatedStructuralActivity=action
+    )
+    model = hall.read()
+    assert {one.beam for one in model.loads.laid} == {beam.key for beam in model.beams}
+
+
+def test_a_member_of_several_lines_is_not_taken_for_its_first() -> None:
+    hall = Hall()
+    analysis = hall.analysis
+    member = analysis.member((0, 0, 3000), (3000, 0, 3000))
+    (shape,) = member.Representation.Representations
+    (more,) = analysis.edge((3000, 0, 3000), (6000, 0, 3000)).Representations
+    shape.Items = [*shape.Items, *more.Items]
+    analysis.along(member, analysis.linear(**DOWN), analysis.case("Live"))
+    model = hall.read()
+    assert not model.loads.laid
+    (told,) = case_of(model, "Live").uncarried
+    assert "is made of 2 lines" in told
+
+
+@pytest.mark.parametrize("place", [(2000, 0, 3000), (2000, 4000, 3000)])
+def test_a_point_load_on_a_surface_is_carried_where_it_stands_on_a_beam(
+    place: tuple[float, float, float],
+) -> None:
+    hall = Hall()
+    analysis = hall.analysis
+    case, plate = analysis.case("Live"), analysis.surface()
+    analysis.at(plate, analysis.single(z=-4e3), case, shape=analysis.vertex(place))
+    model = hall.read()
+    on_beam = place[1] == 0
+    assert len(model.loads.laid) == on_beam
+    assert len(case_of(model, "Live").uncarried) == (not on_beam)
+
+
+@pytest.mark.parametrize("kind", ["IfcStructuralLoadTemperature", "displacement"])
+def test_what_is_no_force_is_a_doubt_of_the_beam(kind: str) -> None:
+    hall = Hall()
+    analysis, case = hall.analysis, hall.analysis.case("Summer")
+    if kind == "displacement":
+        load = analysis.make("IfcStructuralLoadSingleDisplacement", DisplacementZ=-5.0)
+        analysis.at(analysis.node((6000, 0, 3000)), load, case)
+    else:
+        member = analysis.member((0, 0, 3000), (6000, 0, 3000))
+        analysis.along(member, analysis.make(kind, DeltaTConstant=20.0), case)
+    model = hall.read()
+    assert not model.loads.laid
+    assert "cannot be read" in doubts(model)
+
+
+def test_a_factor_of_nothing_is_a_doubt() -> None:
+    hall = Hall()
+    member = hall.analysis.member((0, 0, 3000), (6000, 0, 3000))
+    case = hall.analysis.case("Live", Coefficient=0.0)
+    hall.analysis.along(member, hall.analysis.linear(**DOWN), case)
+    assert "acts with the factor 0" in doubts(hall.read())
+
+
+def test_loads_on_a_beam_itself_without_an_analysis_member() -> None:
+    hall = Hall("IFC4", "INCH", "lbf")
+    hall.analysis.along(hall.beams[0], hall.analysis.linear(**DOWN), hall.analysis.case("Live"))
+    laid = only(hall.read())
+    assert (laid.start, laid.end) == pytest.approx((0.0, 6000.0))
+    assert laid.values[0] == pytest.approx(10.0)

@@ -155,12 +155,27 @@ def test_actions_on_surfaces_keep_beams_from_adequate_until_the_engineer_says(
     made.analysis.over(made.analysis.surface(), made.case)
     run = made.rated(tmp_path, taking(TAKES, LINE))
     assert only(run).verdict is Verdict.NOT_RATED
-    assert "load case 'Live' of the model: 1 action: acts on a surface" in why(only(run))
+    assert "load case 'Live' of the model: 1 action: on a surface, not carried" in why(only(run))
     complete = '[[beams]]\nbeams = ["*"]\nloads_complete = true\n'
     (tmp_path / "brief.toml").write_text(taking(TAKES, LINE, complete), encoding="utf-8")
     run = rate([tmp_path / "hall.ifc"], tmp_path / "brief.toml")
     assert only(run).verdict is Verdict.ADEQUATE
-    assert "acts on a surface" in remarks(run)
+    assert "on a surface, not carried" in remarks(run)
+
+
+def test_a_load_near_the_beam_keeps_it_from_adequate_until_the_engineer_says(
+    tmp_path: Path, made: Made
+) -> None:
+    """An analysis model that lies at the top of the floor, 200 mm above the beam."""
+    high = made.analysis.member((0, 0, 800), (6000, 0, 800), name="M-2")
+    made.analysis.along(high, made.analysis.linear(z=-10.0), made.case)
+    run = made.rated(tmp_path, taking(TAKES, LINE))
+    assert only(run).verdict is Verdict.NOT_RATED
+    assert "acts near the beam, 200 mm off its body, and on no beam" in why(only(run))
+    complete = '[[beams]]\nbeams = ["*"]\nloads_complete = true\n'
+    (tmp_path / "brief.toml").write_text(taking(TAKES, LINE, complete), encoding="utf-8")
+    run = rate([tmp_path / "hall.ifc"], tmp_path / "brief.toml")
+    assert only(run).verdict is Verdict.ADEQUATE
 
 
 def test_what_is_lost_is_told_with_its_size(tmp_path: Path, made: Made) -> None:

@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections import defaultdict
 from collections.abc import Iterator, Mapping, Sequence
 
-from ifccheck.beam import Beam, LaidAction, Load, ModelCase, ModelLoads, Remark, Span
+from ifccheck.beam import ActionDoubt, Beam, LaidAction, Load, ModelCase, ModelLoads, Remark, Span
 from ifccheck.brief.model import Brief, TakenCase
 from ifccheck.brief.places import did_you_mean
 from ifccheck.errors import BriefError
@@ -65,12 +65,12 @@ def _load(action: LaidAction, taken: TakenCase, beam: Beam, span: Span | None) -
     )
 
 
-def doubts_by_beam(brief: Brief, found: ModelLoads) -> dict[str, list[str]]:
+def doubts_by_beam(brief: Brief, found: ModelLoads) -> dict[str, list[ActionDoubt]]:
     """What of the actions that the brief takes is not laid on each beam, or not surely."""
-    doubts: defaultdict[str, list[str]] = defaultdict(list)
+    doubts: defaultdict[str, list[ActionDoubt]] = defaultdict(list)
     for doubt in found.doubts:
         if taken := brief.from_model.get(doubt.case):
-            doubts[doubt.beam].append(f"cases.{taken.case}: {doubt.text}")
+            doubts[doubt.beam].append(doubt._replace(text=f"cases.{taken.case}: {doubt.text}"))
     return dict(doubts)
 
 
@@ -88,7 +88,7 @@ def untaken_by_beam(brief: Brief, found: ModelLoads) -> dict[str, list[str]]:
     """Names of the cases that load each beam and that the brief does not take."""
     names: defaultdict[str, dict[str, None]] = defaultdict(dict)
     acting = {(one.beam, one.case): None for one in found.laid}
-    doubtful = {(one.beam, one.case): None for one in found.doubts}
+    doubtful = {(one.beam, one.case): None for one in found.doubts if not one.only_near}
     for beam, case in {**acting, **doubtful}:
         if case not in brief.from_model:
             names[beam][case] = None

@@ -3,8 +3,9 @@
 from __future__ import annotations
 
 from collections import defaultdict
-from collections.abc import Iterable, Sequence
+from collections.abc import Iterable, Iterator, Sequence
 from dataclasses import dataclass, field
+from itertools import product
 from typing import Any
 
 import numpy as np
@@ -12,7 +13,17 @@ import numpy as np
 from ifccheck.beam import Beam
 from ifccheck.ifc.analysis_lines import Places, Stretch, Vector
 from ifccheck.ifc.entity import Entity, UnreadableError, get, label, several
-from ifccheck.ifc.laying import BeamBox, Held, beside, box_of, coincides, runs_along
+from ifccheck.ifc.laying import (
+    NEAR,
+    TOLERANCE,
+    BeamBox,
+    Held,
+    beside,
+    box_of,
+    coincides,
+    off,
+    runs_along,
+)
 from ifccheck.ifc.placements import Matrix
 
 
@@ -28,6 +39,8 @@ class Hosts:
     """Beams that a load at a place of it may stand on"""
     doubts: dict[str, str] = field(default_factory=dict)
     """Why it does not surely act on a beam, by the beam's key"""
+    near: dict[str, str] = field(default_factory=dict)
+    """Beams that it runs near to, where no beam has it, and how"""
 
 
 class Finder:
@@ -38,34 +51,51 @@ class Finder:
         self._by_id = {beam.step_id: beam for beam in beams}
         self._boxes = {beam.step_id: box for beam in beams if (box := box_of(beam))}
         self._tied = self._ties(file)
-        self.items: dict[int, Entity] = {
-            activity.id(): get(relation, "RelatingElement")
-            for relation in file.by_type("IfcRelConnectsStructuralActivity")
-            if (activity := get(relation, "RelatedStructuralActivity")) is not None
-            and get(relation, "RelatingElement") is not None
-        }
+        self._all = tuple(self._boxes.values())
+        bounds = [_bounds(box) for box in self._all]
+        self._low = np.array([low for low, _ in bounds]).reshape(-1, 3)
+        self._high = np.array([high for _, high in bounds]).reshape(-1, 3)
+        self._items = _items(file)
+        self._members = _members_at_nodes(file)
+        self._known: dict[int, Hosts] = {}
+
+    def items(self, action: Entity) -> list[Entity | None]:
+        """The items that an action acts on; None where it is connected to none."""
+        return [*self._items.get(action.id(), ())] or [None]
 
     def _ties(self, file: Any) -> dict[int, list[int]]:
-        """Step ids of the beams that each item is assigned to, or that are assigned to it."""
+        """Step ids of the products that each item is assigned to, or that are assigned to it."""
         tied: defaultdict[int, list[int]] = defaultdict(list)
         for relation in file.by_type("IfcRelAssignsToProduct"):
-            product = get(relation, "RelatingProduct")
-            for other in several(relation, "RelatedObjects") if product is not None else ():
-                for item, beam in ((product, other), (other, product)):
-                    if beam.id() in self._by_id and item.is_a("IfcStructuralItem"):
-                        tied[item.id()].append(beam.id())
+            one = get(relation, "RelatingProduct")
+            for other in several(relation, "RelatedObjects") if one is not None else ():
+                for item, element in ((one, other), (other, one)):
+                    if item.is_a("IfcStructuralItem") and element.is_a("IfcElement"):
+                        tied[item.id()].append(element.id())
         return dict(tied)
+
+    def _ties_of(self, item: Entity | None) -> list[int]:
+        """Step ids of the products that an item stands for; of a node, those of its members."""
+        if item is None:
+            return []
+        members = self._members.get(item.id(), ())
+        return [product for key in (item.id(), *members) for product in self._tied.get(key, ())]
 
     def tied(self, item: Entity | None) -> tuple[Beam, ...]:
         """The beams that relations tie an item to, or that it is itself."""
-        if item is None:
-            return ()
-        own = [item.id()] if item.id() in self._by_id else self._tied.get(item.id(), [])
-        return tuple(self._by_id[step_id] for step_id in own)
+        own = dict.fromkeys([*self._ties_of(item), *([] if item is None else [item.id()])])
+        return tuple(self._by_id[step_id] for step_id in own if step_id in self._by_id)
 
-    def hosts(self, action: Entity) -> Hosts:
+    def hosts(self, action: Entity, item: Entity | None) -> Hosts:
         """Where an action lies; raises UnreadableError where that cannot be told."""
-        item = self.items.get(action.id())
+        if item is None or get(action, "Representation") is not None:
+            return self._found(action, item)
+        key = item.id() if action.is_a("IfcStructuralPointAction") else -item.id()
+        if key not in self._known:
+            self._known[key] = self._found(action, item)
+        return self._known[key]
+
+    def _found(self, action: Entity, item: Entity | None) -> Hosts:
         if action.is_a("IfcStructuralPointAction"):
             return self._at_point(action, item)
         line = self._line(action, item)
@@ -73,9 +103,8 @@ class Finder:
             raise UnreadableError(f"{label(action)} gives no line that it acts along")
         return self._along(line, item)
 
-    def frame(self, action: Entity) -> Matrix:
+    def frame(self, action: Entity, item: Entity | None) -> Matrix:
         """Directions (columns) of the components of an action's loads."""
-        item = self.items.get(action.id())
         whole: Entity = item if item is not None else action
         if get(action, "GlobalOrLocal") != "LOCAL_COORDS":
             if whole.id() in self._by_id:
@@ -87,9 +116,11 @@ class Finder:
                 return self._places.local_axes(whole, line)
         raise UnreadableError(f"{label(action)} acts in axes of {label(whole)} that are not read")
 
-    def points_of(self, action: Entity, points: Iterable[Entity]) -> list[Vector]:
+    def points_of(
+        self, action: Entity, item: Entity | None, points: Iterable[Entity]
+    ) -> list[Vector]:
         """Points in the coordinates of an action, in the building."""
-        matrix = self._own_matrix(action, self.items.get(action.id()))
+        matrix = self._own_matrix(action, item)
         return [self._places.placed(point, matrix) for point in points]
 
     def _own_matrix(self, action: Entity, item: Entity | None) -> Matrix:
@@ -118,11 +149,23 @@ class Finder:
             helds[beam.key] = held
             if beside(held, line):
                 doubts[beam.key] = "it lies beside the beam: torsion is not checked"
-        for box in self._boxes.values():
-            if box.beam.key not in helds and (held := coincides(box, line)):
+        loose: list[Held] = []
+        for box in self._candidates(line.start, line.end):
+            if box.beam.key in helds:
+                continue
+            if held := coincides(box, line):
                 helds[box.beam.key] = held
+            elif held := runs_along(box, line):
+                loose.append(held)
         found = tuple(helds.values())
-        return Hosts(line, None, found, tuple(held.box for held in found), doubts)
+        near = {} if self._ties_of(item) else dict(_near(loose, found, line))
+        return Hosts(line, None, found, tuple(held.box for held in found), doubts, near)
+
+    def _candidates(self, *points: Vector) -> list[BeamBox]:
+        """Beams whose body comes within reach of the box round points."""
+        low, high = np.min(points, axis=0) - NEAR, np.max(points, axis=0) + NEAR
+        meets = ((self._high >= low) & (self._low <= high)).all(axis=1)
+        return [self._all[n] for n in np.flatnonzero(meets)]
 
     def _at_point(self, action: Entity, item: Entity | None) -> Hosts:
         point = self._places.point(action, self._own_matrix(action, item))
@@ -131,9 +174,51 @@ class Finder:
         if point is None:
             raise UnreadableError(f"{label(action)} gives no point that it acts at")
         tied = {beam.step_id for beam in self.tied(item)}
-        boxes = tuple(
-            box
-            for step_id, box in self._boxes.items()
-            if step_id in tied or box.holds(box.inside(point[None, :]))
-        )
-        return Hosts(None, point, (), boxes, {})
+        boxes, near = [self._boxes[step_id] for step_id in tied if step_id in self._boxes], {}
+        for box in self._candidates(point):
+            inner = box.inside(point[None, :])
+            if box.beam.step_id not in tied and box.holds(inner):
+                boxes.append(box)
+            elif TOLERANCE < inner[0, 0] < box.high[0] - TOLERANCE and box.off(inner[:, 1:]) < NEAR:
+                near[box.beam.key] = f"{box.off(inner[:, 1:]):.0f} mm off its body"
+        elsewhere = bool(boxes or self._ties_of(item))
+        return Hosts(None, point, (), tuple(boxes), {}, {} if elsewhere else near)
+
+
+def _near(loose: Sequence[Held], found: Sequence[Held], line: Stretch) -> Iterator[tuple[str, str]]:
+    """Beams that a line runs near to, over a stretch where it lies on no beam."""
+    taken = [held.covered(line) for held in found]
+    for held in loose:
+        start, end = held.covered(line)
+        distance = off(held, line)
+        if distance < NEAR and not any(start < other[1] and other[0] < end for other in taken):
+            yield held.box.beam.key, f"{distance:.0f} mm off its body"
+
+
+def _bounds(box: BeamBox) -> tuple[Vector, Vector]:
+    """The least and the greatest coordinates of a beam's body in the building."""
+    corners = np.array(list(product(*zip(box.low, box.high, strict=True))))
+    placed = box.origin + corners @ box.axes
+    return placed.min(axis=0), placed.max(axis=0)
+
+
+def _members_at_nodes(file: Any) -> dict[int, list[int]]:
+    """Step ids of the members that each connection joins."""
+    members: defaultdict[int, list[int]] = defaultdict(list)
+    for relation in file.by_type("IfcRelConnectsStructuralMember"):
+        member = get(relation, "RelatingStructuralMember")
+        node = get(relation, "RelatedStructuralConnection")
+        if member is not None and node is not None:
+            members[node.id()].append(member.id())
+    return dict(members)
+
+
+def _items(file: Any) -> dict[int, list[Entity]]:
+    """The items that each activity is connected to."""
+    items: defaultdict[int, list[Entity]] = defaultdict(list)
+    for relation in file.by_type("IfcRelConnectsStructuralActivity"):
+        activity = get(relation, "RelatedStructuralActivity")
+        item = get(relation, "RelatingElement")
+        if activity is not None and item is not None and item not in items[activity.id()]:
+            items[activity.id()].append(item)
+    return dict(items)

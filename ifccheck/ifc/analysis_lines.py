@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from itertools import chain
 from typing import Any, NamedTuple
 
 import numpy as np
@@ -79,9 +80,11 @@ class Places:
 
         Raises UnreadableError where a line is not straight or has no length.
         """
-        for item in _items(product):
-            ends = self._ends(item)
-            if ends is not None:
+        for items in _representations(product):
+            lines = [ends for ends in map(self._ends, items) if ends is not None]
+            if len(lines) > 1:
+                raise UnreadableError(f"{label(product)} is made of {len(lines)} lines")
+            for ends in lines:
                 stretch = Stretch(*(matrix[:3, :3] @ end + matrix[:3, 3] for end in ends))
                 if stretch.length < LEAST:
                     raise UnreadableError(f"{label(product)} has no length")
@@ -90,7 +93,8 @@ class Places:
 
     def point(self, product: Entity, matrix: Matrix) -> Vector | None:
         """The point that represents a product; None where none does."""
-        points = [one for one in _items(product) if one.is_a() in POINTS]
+        items = chain.from_iterable(_representations(product))
+        points = [one for one in items if one.is_a() in POINTS]
         return self.placed(points[0], matrix) if points else None
 
     def placed(self, item: Entity, matrix: Matrix) -> Vector:
@@ -133,12 +137,8 @@ def _require_straight(edge: Entity) -> None:
     raise UnreadableError(f"{label(edge)} is not one straight line")
 
 
-def _items(product: Entity) -> list[Any]:
+def _representations(product: Entity) -> list[tuple[Any, ...]]:
+    """The items of each representation of a product."""
     shape = get(product, "Representation")
-    if shape is None:
-        return []
-    return [
-        item
-        for representation in several(shape, "Representations")
-        for item in several(representation, "Items")
-    ]
+    drawn = () if shape is None else several(shape, "Representations")
+    return [several(one, "Items") for one in drawn]

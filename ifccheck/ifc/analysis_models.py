@@ -20,7 +20,12 @@ if TYPE_CHECKING:
     from ifccheck.ifc.context import Context
 
 ACTIONS, GROUPS = "IfcStructuralAction", "IfcStructuralLoadGroup"
-SURFACES = ("IfcStructuralSurfaceAction", "IfcStructuralPlanarAction")
+SURFACE_ACTIONS = ("IfcStructuralSurfaceAction", "IfcStructuralPlanarAction")
+SURFACES = ("IfcStructuralSurfaceMember", "IfcStructuralSurfaceConnection")
+ON_SURFACE = "on a surface, not carried to beams"
+BY_NAME = "reached only through a group of the same name"
+UNREAD = "on no beam in scope, and not read"
+TIE = "tie its member to the beam by IfcRelAssignsToProduct, or write loads_complete = true"
 LEAST_LOST = 1e-3
 """Part of a case's load that may reach no beam without a word"""
 PERMANENT = {"PERMANENT_G": True, "VARIABLE_Q": False, "EXTRAORDINARY_A": False}
@@ -40,7 +45,7 @@ class _Case:
         self.actions = 0
         self.total = self.lost = 0.0
         self.uncarried: Counter[str] = Counter()
-        self.notes: list[str] = []
+        self.notes: Counter[str] = Counter()
 
 
 class _Reader:
@@ -70,37 +75,44 @@ class _Reader:
         )
 
     def _action(self, action: Entity) -> None:
-        sources = [_source(action, share) for share in self._groups.shares(action)]
+        shares = self._groups.shares(action)
+        sources = [_source(action, share) for share in shares]
         sources = sources or [Source("", _origin(action), 1.0)]
-        for share in self._groups.shares(action):
+        for share in shares:
             if share.by_name:
-                self._note(_name(share.case), f"{_origin(action)} reaches it only through a group"
-                           " of the same name")  # fmt: skip
+                self._cases[_name(share.case)].notes[BY_NAME] += 1
         for source in sources:
             self._cases[source.case].actions += 1
-        if any(action.is_a(name) for name in SURFACES if _has(self._file, name)):
-            self._unplaced(sources, "acts on a surface")
+        for item in self._finder.items(action):
+            self._on_item(action, item, sources)
+
+    def _on_item(self, action: Entity, item: Entity | None, sources: Sequence[Source]) -> None:
+        if _is_any(action, SURFACE_ACTIONS):
+            self._unplaced(sources, ON_SURFACE)
             return
         try:
-            hosts = self._finder.hosts(action)
+            hosts = self._finder.hosts(action, item)
         except (UnreadableError, *ILL_TYPED) as error:
-            self._unhosted(action, sources, str(error))
+            self._unhosted(item, sources, str(error))
+            return
+        if item is not None and _is_any(item, SURFACES) and not hosts.boxes:
+            self._unplaced(sources, ON_SURFACE)
             return
         try:
-            applied = self._applied(action, hosts)
+            applied = self._applied(action, item, hosts)
         except (UnreadableError, *ILL_TYPED) as error:
             self._unread(hosts, sources, str(error))
             return
         for source in sources:
             self._lay(applied, hosts, source)
 
-    def _applied(self, action: Entity, hosts: Hosts) -> Applied:
-        axes = self._finder.frame(action)
+    def _applied(self, action: Entity, item: Entity | None, hosts: Hosts) -> Applied:
+        axes = self._finder.frame(action, item)
         if hosts.point is not None:
             return applied_at(action, hosts.point, axes, self._units)
         assert hosts.line is not None  # it lies along a line, or at a point
         if action.is_a() == "IfcStructuralLinearActionVarying":
-            points = self._finder.points_of(action, _varying_points(action))
+            points = self._finder.points_of(action, item, _varying_points(action))
             places = [float((p - hosts.line.start) @ hosts.line.along) for p in points]
             return applied_varying(action, hosts.line, places, axes, self._units)
         return applied_along(action, hosts.line, axes, self._scale, self._units)
@@ -124,10 +136,16 @@ class _Reader:
         for key in reached:
             for doubt in applied.doubts:
                 self._doubt(key, source, f"{source.origin}: {doubt}")
-            if source.factor == 0.0:
-                self._doubt(key, source, f"{source.origin} acts with the factor 0")
+        for box in hosts.boxes if source.factor == 0.0 else ():
+            self._doubt(box.beam.key, source, f"{source.origin} acts with the factor 0")
         for key, doubt in hosts.doubts.items():
             self._doubt(key, source, f"{source.origin}: {doubt}")
+        self._lay_near(hosts, source)
+
+    def _lay_near(self, hosts: Hosts, source: Source) -> None:
+        for key, how in hosts.near.items():
+            text = f"{source.origin} acts near the beam, {how}, and on no beam: {TIE}"
+            self._doubts[ActionDoubt(key, source.case, text, only_near=True)] = None
 
     def _keep(self, found: Iterator[LaidAction | str], beam: Beam, source: Source) -> set[str]:
         """Keep what was laid on a beam and what was not; the beam's key where either was."""
@@ -143,16 +161,13 @@ class _Reader:
     def _doubt(self, key: str, source: Source, said: str) -> None:
         self._doubts[ActionDoubt(key, source.case, said)] = None
 
-    def _note(self, case: str, said: str) -> None:
-        self._cases[case].notes.append(said)
-
     def _unplaced(self, sources: Sequence[Source], why: str) -> None:
         for source in sources:
             self._cases[source.case].uncarried[why] += 1
 
-    def _unhosted(self, action: Entity, sources: Sequence[Source], why: str) -> None:
+    def _unhosted(self, item: Entity | None, sources: Sequence[Source], why: str) -> None:
         """An action whose place cannot be told: a doubt of the beams that it is tied to."""
-        tied = self._finder.tied(self._finder.items.get(action.id()))
+        tied = self._finder.tied(item)
         if not tied:
             self._unplaced(sources, f"cannot be placed ({why})")
         for beam in tied:
@@ -163,8 +178,9 @@ class _Reader:
         """An action whose load cannot be read: a doubt of every beam that it may act on."""
         keys = dict.fromkeys((*(box.beam.key for box in hosts.boxes), *hosts.doubts))
         for source in sources:
+            self._lay_near(hosts, source)
             if not keys:
-                self._note(source.case, f"{source.origin} reaches no beam, and cannot be read")
+                self._cases[source.case].notes[UNREAD] += 1
             for key in keys:
                 self._doubt(key, source, f"{source.origin} cannot be read: {why}")
 
@@ -181,17 +197,20 @@ class _Reader:
             name=name,
             actions=found.actions,
             permanent=kinds.pop() if len(kinds) == 1 else None,
-            notes=tuple(dict.fromkeys((*_told(groups), *found.notes))),
+            notes=(*dict.fromkeys(_told(groups)), *_counted(found.notes)),
             lost=lost,
-            uncarried=tuple(
-                f"{count} {'action' if count == 1 else 'actions'}: {why}"
-                for why, count in found.uncarried.items()
-            ),
+            uncarried=tuple(_counted(found.uncarried)),
         )
 
 
-def _has(file: object, name: str) -> bool:
-    return not (name == SURFACES[0] and getattr(file, "schema", "") == "IFC2X3")
+def _counted(counts: Counter[str]) -> Iterator[str]:
+    for what, count in counts.items():
+        yield f"{count} {'action' if count == 1 else 'actions'}: {what}"
+
+
+def _is_any(entity: Entity, names: Sequence[str]) -> bool:
+    """Whether an entity is of one of some classes, or of one that begins as they do."""
+    return str(entity.is_a()).startswith(tuple(names))
 
 
 def _name(group: Entity) -> str:

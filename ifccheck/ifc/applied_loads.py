@@ -23,6 +23,8 @@ BY_PLACES = ("", "CONST", "LINEAR", "POLYGONAL", "EQUIDISTANT", "NOTDEFINED")
 TOLERANCE = 1.0
 """Distance [mm] by which a place may lie beyond the end of its line"""
 
+WARPING = "its warping moment is not checked"
+
 Pair = npt.NDArray[np.float64]
 
 
@@ -163,6 +165,7 @@ def _spots(
         force = axes @ _triple(value, "Force") * units.force.factor
         moment = axes @ _triple(value, "Moment") * units.moment.factor
         found.spots.append(Spot(at, force, moment))
+        doubts |= {WARPING} if get(value, "WarpingMoment") else set()
         doubts |= {units.force.doubt} if force.any() else set()
         doubts |= {units.moment.doubt} if moment.any() else set()
     found.doubts = sorted(doubts - {""})

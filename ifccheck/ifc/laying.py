@@ -14,6 +14,8 @@ from ifccheck.ifc.applied_loads import Applied, Piece, Spot
 from ifccheck.ifc.placements import Matrix
 from ifccheck.units import ShownKind, show
 
+NEAR = 1000.0
+"""Distance [mm] within which a member that stands for no beam may be meant to stand for one"""
 TOLERANCE = 50.0
 """Distance [mm] by which a member may lie outside of the body of the beam that it stands for"""
 PARALLEL = np.cos(np.radians(2.0))
@@ -36,6 +38,11 @@ class BeamBox:
     def inside(self, points: Matrix) -> Matrix:
         """Points of the building (N, 3) in the beam's axes."""
         return np.asarray((points - self.origin) @ self.axes.T)
+
+    def off(self, points: Matrix) -> float:
+        """The least distance [mm] of points (N, 2) across from the body."""
+        beyond = np.maximum(self.low[1:] - points, points - self.high[1:])
+        return float(np.linalg.norm(np.maximum(beyond, 0.0), axis=1).min())
 
     def holds(self, points: Matrix) -> bool:
         """Whether points of its axes lie in its body, within the tolerance."""
@@ -99,6 +106,16 @@ def coincides(box: BeamBox, line: Stretch) -> Held | None:
         return None
     ends = np.array([line.start + s * line.along for s in (start, end)])
     return held if box.holds(box.inside(ends)) else None
+
+
+def off(held: Held, line: Stretch) -> float:
+    """Distance [mm] of a line from the body of the beam that it runs along; inf where it lies
+    beyond its ends."""
+    start, end = held.covered(line)
+    if end - start <= 3.0 * TOLERANCE:
+        return float("inf")
+    ends = held.box.inside(np.array([line.start + s * line.along for s in (start, end)]))
+    return held.box.off(ends[:, 1:])
 
 
 def beside(held: Held, line: Stretch) -> bool:

@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Mapping, Sequence, Set
 from dataclasses import dataclass, field
 
-from ifccheck.beam import Contact, Given, Reason, Remark, Support, Unmeasured
+from ifccheck.beam import ActionDoubt, Contact, Given, Reason, Remark, Support, Unmeasured
 from ifccheck.brief.model import Brief
 from ifccheck.brief.statements import BeamStatement, MaterialStatement
 from ifccheck.frame.bar_ends import Surroundings
@@ -76,7 +76,7 @@ class Sources:
     """Entries of loads that act upward, by place, and whether the engineer says so"""
     slabs: Slabs
     around: Surroundings
-    action_doubts: Mapping[str, Sequence[str]]
+    action_doubts: Mapping[str, Sequence[ActionDoubt]]
     """What of the actions of an analysis model is not laid on each beam, or not surely"""
     untaken: Mapping[str, Sequence[str]]
     """Load cases of the model that load each beam and that the brief does not take"""

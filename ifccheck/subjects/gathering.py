@@ -304,8 +304,9 @@ def _judge_model_loads(
     beam: Beam, sources: Sources, statement: BeamStatement, findings: Findings
 ) -> None:
     """Note every doubt about what acts on the beam by the model's own analysis model."""
-    for text in sources.action_doubts.get(beam.key, ()):
-        findings.refuse(text, blocking=False)
+    for doubt in sources.action_doubts.get(beam.key, ()):
+        if not (doubt.only_near and statement.loads_complete):
+            findings.refuse(doubt.text, blocking=False)
     for name in sources.untaken.get(beam.key, ()):
         which = f"load case {clipped(name)}" if name else "an action of no load case"
         text = f"{which} of the model acts on it, and no case of the brief takes it"
@@ -313,8 +314,8 @@ def _judge_model_loads(
     if not statement.loads_complete:
         for text in sources.uncarried:
             findings.refuse(
-                f"{text}: it is not carried to beams; give what of it acts on this beam under"
-                " [[loads]] and write loads_complete = true",
+                f"{text}; give what of it acts on this beam under [[loads]] and write"
+                " loads_complete = true",
                 blocking=False,
             )
 
