@@ -174,12 +174,19 @@ def never(one: Joint, other: Joint) -> bool:
     return False
 
 
-def stand(model: Model, *, through: bool = True, stated: Stated | None = None) -> Stood:
+def stand(
+    model: Model,
+    *,
+    through: bool = True,
+    stated: Stated | None = None,
+    load_bearing: Sequence[str] = (),
+) -> Stood:
     by_name = {beam.name: beam.key for beam in model.beams}
     contacts = find_contacts(model.beams, model.members)
     others = contacts_of_others(model.beams, model.members)
     said = {by_name[name]: ends for name, ends in (stated or {}).items()}
-    found = find_lines(model, contacts, others, said, always if through else never)
+    bearing = {member.step_id for member in model.members if member.name in load_bearing}
+    found = find_lines(model, contacts, others, said, always if through else never, bearing)
     return Stood(model, found)
 
 
@@ -223,7 +230,9 @@ def test_every_beam_is_in_one_line_or_has_a_reason(setting: Setting) -> None:
 def test_reasons_say_why_a_beam_has_no_way_to_stand() -> None:
     stood = building(Setting())
     assert "nothing that could carry it touches it" in stood.why("AIR")
-    assert "it lies on W4 (IfcWall) from end to end" in stood.why("ALONG")
+    assert "W4 (IfcWall): it may only fill the space under the beam" in stood.why("ALONG")
+    bearing = stand(stood.model, load_bearing=["W4"])
+    assert "it lies on W4 (IfcWall) from end to end" in bearing.why("ALONG")
     assert "only Q3 (IfcColumn) carries it, at x = 0.20 m" in stood.why("ODD")
     assert all(stood.why(name).startswith("supports unknown: ") for name in ("AIR", "ALONG", "ODD"))
 
@@ -456,3 +465,44 @@ def test_a_column_turned_by_45_degrees_is_as_stiff_as_its_outline() -> None:
 def test_one_element_over_columns_needs_no_joint() -> None:
     stood = stand(read(one_over_three_columns()), through=False)
     assert len(stood.spans()[0]) == 3
+
+
+@pytest.mark.parametrize(
+    ("name", "kind"), [("PART", "IfcWall"), ("POST", "IfcMember"), ("COL", "IfcColumn")]
+)
+def test_a_partition_or_a_mullion_under_a_beam_carries_nothing_unless_told(
+    name: str, kind: str
+) -> None:
+    """A wall or a post that ends under the soffit may only fill the space; a column carries."""
+    ends = [lying("A", (0, 0, 3000), (8000, 0, 3000)), column("1", 200, 0), column("2", 7800, 0)]
+    model = read([*ends, block(name, (3000, 0), (100, 100), (0, 3000), kind)])
+    told = stand(model, load_bearing=[name])
+    rows_near(told.spans()[0], [("A", 200, 3000, PIN, ON), ("A", 3000, 7800, ON, PIN)])
+    silent = stand(model)
+    if kind == "IfcColumn":
+        assert silent.spans() == told.spans()
+    else:
+        assert "it may only fill the space under the beam" in silent.why("A")
+        assert f'write ignore = ["{name}"] under [[supports]]' in silent.why("A")
+
+
+def test_an_infill_wall_between_columns_shortens_no_span() -> None:
+    ends = [lying("A", (0, 0, 3000), (8000, 0, 3000)), column("1", 200, 0), column("2", 7800, 0)]
+    for low, high in ((400, 7600), (0, 4000), (0, 8000)):
+        wall = block("W", ((low + high) / 2, 0), (high - low, 200), (0, 3000), "IfcWall")
+        stood = stand(read([*ends, wall]))
+        assert "W (IfcWall)" in stood.why("A"), (low, high)
+
+
+def test_a_mullion_beside_a_column_does_not_take_its_place() -> None:
+    """The beam meets the column's face; a post under its end is narrower and may carry nothing."""
+    tall = (0.0, 6000.0)
+    model = read([
+        lying("A", (200, 0, 3000), (5800, 0, 3000)), column("1", 0, 0, tall),
+        column("2", 6000, 0, tall), block("M", (250, 0), (100, 100), (0, 3000), "IfcMember"),
+    ])  # fmt: skip
+    stood = stand(model)
+    first = stood.lines.seats[stood.key("A")][0]
+    assert (first.carrier_name, first.x, first.others) == (
+        "1 (IfcColumn)", pytest.approx(-200), ("M (IfcMember)",),
+    )  # fmt: skip

@@ -120,19 +120,24 @@ def _followers(key: str, links: Mapping[Joint, Joint], *, onward: bool) -> list[
 
 
 def _directed(beams: tuple[LineBeam, ...], bodies: Mapping[str, Spanning]) -> tuple[LineBeam, ...]:
-    against = sum(bodies[beam.key].length for beam in beams if beam.reversed)
-    along = sum(bodies[beam.key].length for beam in beams if not beam.reversed)
-    back = tuple(LineBeam(beam.key, not beam.reversed) for beam in reversed(beams))
-    if abs(against - along) <= SAME:
-        return min(beams, back, key=lambda each: (bodies[each[0].key].told, each[0].key))
-    return back if against > along else beams
+    if len(beams) == 1:
+        return beams
+    excess = sum([bodies[key].length * (-1.0 if against else 1.0) for key, against in beams])
+    if excess > SAME:
+        return beams
+    back = tuple([LineBeam(key, not against) for key, against in reversed(beams)])
+    if excess < -SAME:
+        return back
+    return min(beams, back, key=lambda each: (bodies[each[0].key].told, each[0].key))
 
 
 def _line(beams: tuple[LineBeam, ...], spans: Mapping[str, Sequence[LineSpan]]) -> BeamLine:
     along: list[LineSpan] = []
     for key, against in beams:
-        own = [span._replace(reversed=against) for span in spans[key]]
-        along += own[::-1] if against else own
+        if against:
+            along += [span._replace(reversed=True) for span in reversed(spans[key])]
+        else:
+            along += spans[key]
     return BeamLine(beams, tuple(along), tuple(_nodes(along)))
 
 
@@ -141,8 +146,8 @@ def _nodes(spans: Sequence[LineSpan]) -> Iterator[Node]:
     yield _node(first)
     for before, after in pairwise(spans):
         one, other = before.ends[1], after.ends[0]
-        seats = tuple(dict.fromkeys(end.seat for end in (one, other) if end.seat))
-        yield Node("continuous", seats)
+        meeting = (one.seat,) if one.seat is other.seat else (one.seat, other.seat)
+        yield Node("continuous", tuple([seat for seat in meeting if seat]))
     yield _node(last)
 
 

@@ -9,9 +9,9 @@ import numpy as np
 
 from ifccheck.beam import Beam, Contact, Member
 from ifccheck.frame.contacts import TOLERANCE, kind_of
-from ifccheck.frame.plans import plan_of
 from ifccheck.frame.seats import Seat
-from ifccheck.frame.spanning import Spanning, heights, spanning_of
+from ifccheck.frame.spanning import Spanning, spanning_of
+from ifccheck.frame.webs import levels_of, ring_of
 
 FarEnd = Literal["fixed", "pinned"]
 """How the columns are held at their other ends"""
@@ -64,7 +64,7 @@ def _columns(seat: Seat, contacts: Iterable[Contact]) -> Iterable[Contact]:
 
 def _parts(column: Member, middle: float, body: Spanning) -> float:
     """I / L of what of a column lies below the beam, and of what lies above it [mm3]."""
-    low, high = heights(column.box)
+    low, high = levels_of(column.box)
     half = body.depth / 2.0 + TOLERANCE
     lengths = [length for length in (middle - low, high - middle) if length > half]
     inertia = second_moment(column, body)
@@ -75,7 +75,7 @@ def second_moment(column: Member, body: Spanning) -> float:
     """Second moment of area of a column's outline, for bending along a beam [mm4]."""
     x, y, _ = body.x
     along = np.array((x, y)) / np.hypot(x, y)
-    ring = plan_of(column)
+    ring = np.array(column.plan or ring_of(column.box))
     s, t = ring @ along, ring @ np.array((-along[1], along[0]))
     s, t = s - s.mean(), t - t.mean()
     after_s, after_t = np.roll(s, -1), np.roll(t, -1)

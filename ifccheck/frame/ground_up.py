@@ -8,7 +8,7 @@ what it carries.
 from __future__ import annotations
 
 from collections import defaultdict
-from collections.abc import Callable, Iterable, Mapping, Sequence, Set
+from collections.abc import Collection, Iterable, Mapping, Sequence, Set
 from typing import NamedTuple
 
 from ifccheck.beam import SupportKind
@@ -40,18 +40,23 @@ class Order(NamedTuple):
 
 
 class _Needs(NamedTuple):
-    """What a beam may stand on: places by their number."""
+    """What a beam may stand on, where that takes more than what stands by itself."""
 
     clusters: Sequence[Cluster]
     said: Mapping[End, SupportKind]
     joined: Mapping[End, str]
     """Beams that this one goes on into over a support"""
 
+    @property
+    def carriers(self) -> set[str]:
+        """Keys of what spans and may carry it."""
+        return {carrier for cluster in self.clusters for carrier in cluster.carriers}
 
-def without_free(clusters: Sequence[Cluster], said: Mapping[End, SupportKind]) -> list[Cluster]:
+
+def without_free(clusters: Sequence[Cluster], said: Mapping[End, SupportKind]) -> Sequence[Cluster]:
     """The places that may hold a beam, without the ends that the brief says are free."""
     free = {end for end, kind in said.items() if kind == "free"}
-    return [each for each in clusters if each.place not in free] if free else list(clusters)
+    return [each for each in clusters if each.place not in free] if free else clusters
 
 
 def order_of(
@@ -73,112 +78,89 @@ def order_of(
     fastened
         What stands in any case: corbels.
     """
-    needs = {key: _needs(key, own, stated, joints) for key, own in clusters.items()}
+    needs = {
+        key: _Needs(
+            own,
+            stated.get(key, {}),
+            {end: joints[key, end][0] for end in ENDS if (key, end) in joints},
+        )
+        for key, own in clusters.items()
+        if not _all_stand(own)
+    }
     resting: dict[str, list[str]] = defaultdict(list)
     for key, each in needs.items():
-        for carrier in _carriers(each) | set(each.joined.values()):
+        for carrier in each.carriers | set(each.joined.values()):
             resting[carrier].append(key)
     rounds: dict[str, int] = {}
-    waiting: Iterable[str] = [
-        key for key, each in needs.items() if key in fastened or _stands(each, rounds)
+    waiting: Collection[str] = [
+        key for key in clusters if key not in needs or key in fastened or _stands(needs[key], {})
     ]
     count = 0
     while waiting:
         rounds |= dict.fromkeys(waiting, count)
-        touched = dict.fromkeys(above for key in waiting for above in resting[key])
+        touched = dict.fromkeys(above for key in waiting for above in resting.get(key, ()))
         waiting = [key for key in touched if key not in rounds and _stands(needs[key], rounds)]
         count += 1
     return Order(rounds, _rings(needs, rounds))
 
 
-def _needs(
-    key: str, clusters: Sequence[Cluster], stated: Stated, joints: Mapping[Joint, Joint]
-) -> _Needs:
-    joined = {end: joints[key, end][0] for end in ENDS if (key, end) in joints}
-    return _Needs(clusters, stated.get(key, {}), joined)
-
-
-def _carriers(needs: _Needs) -> set[str]:
-    return {
-        each.carrier
-        for cluster in needs.clusters
-        for each in cluster.candidates
-        if each.carrier is not None and not each.contact.doubt
-    }
-
-
-def _leans(needs: _Needs, rounds: Mapping[str, int]) -> bool:
-    """Whether it stands only because it goes on into another."""
-    return bool(needs.joined) and not _stands(needs, rounds, alone=True)
+def _all_stand(clusters: Sequence[Cluster]) -> bool:
+    """Whether a beam stands on the ground alone, whatever the brief says of ends that it holds."""
+    if len(clusters) < 2:
+        return False
+    return all(cluster.stands and not cluster.carriers for cluster in clusters)
 
 
 def _stands(needs: _Needs, rounds: Mapping[str, int], *, alone: bool = False) -> bool:
     """Whether it stands on what stands; ``alone``: without going on into another."""
-
-    def counts(candidate: Candidate) -> bool:
-        carrier = candidate.carrier
-        return not candidate.contact.doubt and (carrier is None or carrier in rounds)
-
-    held = [cluster for cluster in needs.clusters if any(map(counts, cluster.candidates))]
-    joined = () if alone else [end for end, other in needs.joined.items() if other in rounds]
-    return stands_on(held, counts, needs.said, joined)
-
-
-def stands_on(
-    held: Sequence[Cluster],
-    counts: Callable[[Candidate], bool],
-    said: Mapping[End, SupportKind],
-    joined: Iterable[End],
-) -> bool:
-    """Whether a beam stands on the places that hold it.
-
-    Parameters
-    ----------
-    held
-        Places where something can be counted on.
-    counts
-        Whether a member can be.
-    said
-        What the brief says of its ends.
-    joined
-        Ends that go on, over a support, into a beam that stands.
-    """
+    said = needs.said
+    held = [
+        cluster
+        for cluster in needs.clusters
+        if cluster.stands or any(carrier in rounds for carrier in cluster.carriers)
+    ]
     places = {cluster.place for cluster in held}
     by_word = [end for end in ENDS if said.get(end, "free") != "free" and end not in places]
     if len(held) + len(by_word) > 1:
         return True
     if by_word:
         return said[by_word[0]] == "fixed"
-    return bool(held) and holds_moment(held[0], counts, said, joined)
+    joined = () if alone else [end for end, other in needs.joined.items() if other in rounds]
+    return bool(held) and _holds_moment(held[0], rounds, said, joined)
 
 
-def holds_moment(
+def _holds_moment(
     cluster: Cluster,
-    counts: Callable[[Candidate], bool],
+    rounds: Mapping[str, int],
     said: Mapping[End, SupportKind],
     joined: Iterable[End],
 ) -> bool:
-    """Whether a beam that is held there alone stands."""
+    """Whether a beam that is held at one place alone stands."""
     place = cluster.place
     if place == "between":
         return False
+    if place in joined:
+        return True
     if place in said:
-        return said[place] == "fixed" or place in joined
-    first = next(each for each in cluster.candidates if counts(each))
-    return first.built_in or place in joined
+        return said[place] == "fixed"
+    for each in cluster.candidates:
+        if not each.contact.doubt and (each.carrier is None or each.carrier in rounds):
+            return each.built_in
+    return False
 
 
 def _rings(needs: Mapping[str, _Needs], rounds: Mapping[str, int]) -> frozenset[tuple[str, str]]:
     """Pairs that close a ring, of which the second came to stand no earlier than the first."""
-    below = {key: _carriers(needs[key]) & rounds.keys() for key in rounds}
-    for key in rounds:
-        if _leans(needs[key], rounds):
-            below[key] |= set(needs[key].joined.values()) & rounds.keys()
+    below = {key: each.carriers for key, each in needs.items() if key in rounds}
+    for key in below:
+        if needs[key].joined and not _stands(needs[key], rounds, alone=True):
+            below[key] |= set(needs[key].joined.values())
+    below = {key: carriers & below.keys() for key, carriers in below.items()}
     on_rings = _on_rings(below)
     return frozenset(
         (key, carrier)
         for key in on_rings
-        for carrier in _carriers(needs[key]) & on_rings
+        for carrier in needs[key].carriers & on_rings
         if rounds[carrier] >= rounds[key]
     )
 

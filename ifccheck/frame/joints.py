@@ -3,12 +3,12 @@
 from __future__ import annotations
 
 from collections.abc import Iterator, Mapping, Sequence
+from itertools import chain
 from typing import NamedTuple
 
 import numpy as np
 
 from ifccheck.frame.boxes import Bools, Floats, Ints
-from ifccheck.frame.carrying import End
 from ifccheck.frame.contacts import TOLERANCE
 from ifccheck.frame.ground_up import Joint
 from ifccheck.frame.seats import LEVEL, Cluster
@@ -25,15 +25,18 @@ class _Ends(NamedTuple):
     """Ends of beams that something may carry (E)."""
 
     joints: Sequence[Joint]
-    carriers: Sequence[frozenset[int]]
     place: Floats
     """The soffit's middle [mm] (E, 3)"""
     outward: Floats
     """Unit vector along the beam, out of its end (E, 3)"""
     depth: Floats
     """[mm] (E)"""
+    row: Ints
+    """Row of the end of each of its carriers (C)"""
+    carrier: Ints
+    """Step id (C)"""
     reach: Floats
-    """How far its carrier reaches beyond the end [mm] (E)"""
+    """How far it reaches beyond the end [mm] (C)"""
 
 
 def meeting_ends(
@@ -64,22 +67,30 @@ def meeting_ends(
 
 def _ends(clusters: Mapping[str, Sequence[Cluster]], bodies: Mapping[str, Spanning]) -> _Ends:
     joints: list[Joint] = []
-    carriers, numbers = [], []
-    for key, own in clusters.items():
+    carriers: list[float] = []
+    beams: list[int] = []
+    for beam, (key, own) in enumerate(clusters.items()):
         for cluster in own:
-            place = cluster.place
-            if place == "between" or cluster.whole:
-                continue
-            body = bodies[key]
-            end: End = place
-            joints.append((key, end))
-            carriers.append(frozenset([each.contact.other_step for each in cluster.candidates]))
-            at, sign = (0.0, -1.0) if end == "start" else (body.length, 1.0)
-            reach = max([each.contact.beyond for each in cluster.candidates])
-            x, y, z = body.x
-            numbers.append((*body.place(at), sign * x, sign * y, sign * z, body.depth, reach))
-    table = np.array(numbers, np.float64).reshape(-1, 8)
-    return _Ends(joints, carriers, table[:, :3], table[:, 3:6], table[:, 6], table[:, 7])
+            if cluster.place != "between" and not cluster.whole:
+                beams.append(beam)
+                for candidate in cluster.candidates:
+                    contact = candidate.contact
+                    carriers += (len(joints), contact.other_step, contact.beyond)
+                joints.append((key, cluster.place))
+    numbers = ((*b.origin, *b.x, b.length, b.depth) for b in map(bodies.__getitem__, clusters))
+    axes = np.fromiter(chain.from_iterable(numbers), np.float64, 8 * len(clusters))
+    axes = axes.reshape(-1, 8)[beams]
+    at_end = np.array([end == "end" for _, end in joints], np.bool_)[:, None]
+    table = np.array(carriers, np.float64).reshape(-1, 3)
+    return _Ends(
+        joints,
+        place=axes[:, :3] + np.where(at_end, axes[:, 6:7], 0.0) * axes[:, 3:6],
+        outward=np.where(at_end, 1.0, -1.0) * axes[:, 3:6],
+        depth=axes[:, 7],
+        row=table[:, 0].astype(np.intp),
+        carrier=table[:, 1].astype(np.intp),
+        reach=table[:, 2],
+    )
 
 
 def _near(ends: _Ends) -> tuple[Ints, Ints]:
@@ -90,10 +101,10 @@ def _near(ends: _Ends) -> tuple[Ints, Ints]:
     """
     import shapely
 
-    rows = np.repeat(np.arange(len(ends.carriers)), [len(each) for each in ends.carriers])
-    _, field = np.unique([step for each in ends.carriers for step in each], return_inverse=True)
+    rows = ends.row
+    _, field = np.unique(ends.carrier, return_inverse=True)
     x, y, _ = ends.place[rows].T
-    reach = np.minimum(ends.reach[rows], WIDEST_JOINT) + OFF_LINE
+    reach = np.minimum(ends.reach, WIDEST_JOINT) + OFF_LINE
     x = x + field * (np.ptp(x) + 4.0 * WIDEST_JOINT)
     tree = shapely.STRtree(shapely.points(x, y))
     one, other = tree.query(shapely.box(x - reach, y - reach, x + reach, y + reach))

@@ -3,8 +3,9 @@ model shows them and the brief says."""
 
 from __future__ import annotations
 
-from collections.abc import Callable, Iterator, Mapping, Sequence
+from collections.abc import Callable, Iterator, Mapping, Sequence, Set
 from graphlib import TopologicalSorter
+from itertools import pairwise
 from operator import attrgetter
 from typing import NamedTuple
 
@@ -15,7 +16,16 @@ from ifccheck.frame.carrying import ENDS, End, Stated, judged_contacts
 from ifccheck.frame.contacts import TOLERANCE
 from ifccheck.frame.ground_up import Joint, Order, order_of, told_against, without_free
 from ifccheck.frame.joints import meeting_ends
-from ifccheck.frame.seats import Cluster, Seat, clusters_of, corbels, crossings, seat_of
+from ifccheck.frame.seats import (
+    Cluster,
+    Place,
+    Seat,
+    clusters_of,
+    corbels,
+    crossings,
+    levels_of_uprights,
+    seat_of,
+)
 from ifccheck.frame.spanning import Spanning, all_spanning
 
 RunsThrough = Callable[[Joint, Joint], bool]
@@ -56,6 +66,7 @@ def find_lines(
     others: Mapping[str, Sequence[Contact]],
     stated: Stated,
     runs_through: RunsThrough,
+    load_bearing: Set[int] = frozenset(),
 ) -> Lines:
     """Stand all beams of a model, from the ground up.
 
@@ -64,23 +75,27 @@ def find_lines(
     model
         As it was read.
     contacts
-        Of its beams, by key, as ``find_contacts`` gives them; without those that the brief says
-        do not hold a beam.
+        Of its beams, by key, as ``find_contacts`` gives them; without any with a member that the
+        brief says does not hold that beam.
     others
         Of what else spans, as ``contacts_of_others`` gives them.
     stated
         What the brief's entries say of ends.
     runs_through
         Whether moment passes from one end to another that meets it over their support.
+    load_bearing
+        Step ids of walls and members that the model or the brief says carry what lies on them; of
+        others under a beam, between its ends, nothing tells whether they do.
     """
     everything = {**contacts, **others}
     judged = judged_contacts(everything, model.beams, model.out_of_scope)
     members = {member.step_id: member for member in model.members}
     bodies = all_spanning(model.beams, members, others)
+    uprights = levels_of_uprights(model.members)
     crossed = crossings(judged, bodies)
     clusters = {
         key: without_free(
-            clusters_of(body, judged[key], members, crossed.deeper.get(key, {})),
+            clusters_of(body, judged[key], uprights, crossed.deeper.get(key, {}), load_bearing),
             stated.get(key, {}),
         )
         for key, body in bodies.items()
@@ -91,30 +106,43 @@ def find_lines(
     order = order_of(clusters, stated, joints, corbels(judged, bodies))
     frame = _Frame(bodies, clusters, meeting, joints, stated, order)
     seats = {key: _seats(frame, key) for key in clusters}
-    unknown, spans = _standing(frame, keys, seats)
+    unknown = _unknown(frame, keys, seats)
+    spans = {
+        key: tuple(_spans(frame, key, seats[key], unknown)) for key in keys if key not in unknown
+    }
     return Lines(
         lines=tuple(chains(spans, joints, bodies)),
         unknown=unknown,
         seats=seats,
         order=_carriers_first(seats, order),
         crossing={key: tuple(map(told.crossing, own)) for key, own in crossed.level.items()},
-        remarks={key: tuple(_remarks(frame, key, seats[key], own)) for key, own in spans.items()},
+        remarks={key: tuple(_remarks(frame, seats[key], own)) for key, own in spans.items()},
     )
 
 
 def _seats(frame: _Frame, key: str) -> tuple[Seat, ...]:
-    body, order, said = frame.bodies[key], frame.order, frame.stated.get(key, {})
-    found: list[Seat] = []
+    body, order = frame.bodies[key], frame.order
+    found = []
     for cluster in frame.clusters[key]:
-        held = [each for each in cluster.candidates if not order.speaks_against(key, each)]
-        if held:
-            found.append(seat_of(body, cluster, held))
-        elif cluster.place not in said:
+        for candidate in cluster.candidates:
+            if not order.speaks_against(key, candidate):
+                found.append(seat_of(body, cluster, candidate))
+                break
+        else:
             doubt = told_against(key, cluster, order)
-            found.append(seat_of(body, cluster, cluster.candidates, doubt))
+            found.append(seat_of(body, cluster, cluster.candidates[0], doubt))
+    said = frame.stated.get(key)
+    return _with_the_brief(body, found, said) if said else tuple(found)
+
+
+def _with_the_brief(
+    body: Spanning, seats: Sequence[Seat], said: Mapping[End, SupportKind]
+) -> tuple[Seat, ...]:
+    """The seats, and those of ends of which the brief alone says that they are held."""
+    ends = [end for end in ENDS if said.get(end, "free") != "free"]
+    found = [seat for seat in seats if not (seat.doubt and seat.place in ends)]
     places = {seat.place for seat in found}
-    stated = [end for end in ENDS if said.get(end, "free") != "free" and end not in places]
-    found += [_by_word(body, end) for end in stated]
+    found += [_by_word(body, end) for end in ends if end not in places]
     return tuple(sorted(found, key=_x))
 
 
@@ -127,27 +155,16 @@ def _by_word(body: Spanning, end: End) -> Seat:
     return Seat(body.key, end, x, x, x, 0, "the brief", "", "", "end", direct=False, built_in=False)
 
 
-def _standing(
+def _unknown(
     frame: _Frame, keys: Sequence[str], seats: Mapping[str, Sequence[Seat]]
-) -> tuple[dict[str, Reason], dict[str, tuple[LineSpan, ...]]]:
-    """Why beams do not stand, and the spans of those that do."""
+) -> dict[str, Reason]:
+    """Why beams do not stand, of those of which nothing tells how."""
     rounds = frame.order.rounds
     unknown: dict[str, Reason] = {}
     for key in sorted(keys, key=lambda key: rounds.get(key, len(rounds))):
         if why := _why_not(frame, key, seats[key], unknown):
             unknown[key] = Reason(f"supports unknown: {why}")
-    spans = {}
-    for key in keys:
-        if key not in unknown:
-            joined = [end for end, other in _joined(frame, key) if other not in unknown]
-            spans[key] = tuple(
-                _spans(frame.bodies[key], seats[key], joined, frame.stated.get(key, {}))
-            )
-    return unknown, spans
-
-
-def _joined(frame: _Frame, key: str) -> list[tuple[End, str]]:
-    return [(end, frame.joints[key, end][0]) for end in ENDS if (key, end) in frame.joints]
+    return unknown
 
 
 def _why_not(frame: _Frame, key: str, seats: Sequence[Seat], unknown: Mapping[str, Reason]) -> str:
@@ -161,7 +178,7 @@ def _why_not(frame: _Frame, key: str, seats: Sequence[Seat], unknown: Mapping[st
     if key not in frame.order.rounds:
         return told.no_way(seats)
     if len(seats) == 1 and not _holds_alone(seats[0], frame.stated.get(key, {})):
-        leans_on = [other for _, other in _joined(frame, key)]
+        leans_on = [frame.joints[key, end][0] for end in ENDS if (key, end) in frame.joints]
         if any(other in unknown for other in leans_on):
             return told.leans(frame.bodies[leans_on[0]].told)
     return ""
@@ -175,67 +192,70 @@ def _holds_alone(seat: Seat, said: Mapping[End, SupportKind]) -> bool:
 
 
 def _spans(
-    body: Spanning, seats: Sequence[Seat], joined: Sequence[End], said: Mapping[End, SupportKind]
+    frame: _Frame, key: str, seats: Sequence[Seat], unknown: Mapping[str, Reason]
 ) -> Iterator[LineSpan]:
     """Spans of one beam, in its own x."""
-    first, last = seats[0], seats[-1]
-    tips = SpanEnd("free", 0.0, 0.0), SpanEnd("free", body.length, body.length)
-    if len(seats) == 1 and first.place not in joined:
-        if first.place == "start":
-            yield LineSpan(body.key, SpanEnd("fixed", first.high, first.high, first), tips[1])
-        else:
-            yield LineSpan(body.key, tips[0], SpanEnd("fixed", first.low, first.low, first))
+    first, last, length = seats[0], seats[-1], frame.bodies[key].length
+    goes_on: dict[Place, bool] = {
+        end: frame.joints[key, end][0] not in unknown for end in ENDS if (key, end) in frame.joints
+    }
+    if len(seats) == 1 and not goes_on.get(first.place):
+        yield _cantilever(first, length)
         return
-    kinds: list[EndKind] = ["continuous"] * len(seats)
-    if not (hangs_over_start := first.place != "start" and first.low > TOLERANCE):
-        kinds[0] = _kind("start", joined, said)
-    if not (hangs_over_end := last.place != "end" and last.high < body.length - TOLERANCE):
-        kinds[-1] = _kind("end", joined, said)
-    starts = [
-        SpanEnd(kind, seat.x, max(seat.high, 0.0), seat)
-        for kind, seat in zip(kinds, seats, strict=True)
-    ]
-    ends = [
-        SpanEnd(kind, seat.x, min(seat.low, body.length), seat)
-        for kind, seat in zip(kinds, seats, strict=True)
-    ]
-    if hangs_over_start:
-        yield LineSpan(body.key, tips[0], ends[0])
-    for start, end in zip(starts[:-1], ends[1:], strict=True):
-        yield LineSpan(body.key, start, end)
-    if hangs_over_end:
-        yield LineSpan(body.key, starts[-1], tips[1])
+    said = frame.stated.get(key, {})
+    kind: EndKind = "continuous"
+    if first.place != "start" and first.low > TOLERANCE:
+        yield LineSpan(key, SpanEnd("free", 0.0, 0.0), SpanEnd(kind, first.x, first.low, first))
+    elif not goes_on.get("start"):
+        kind = said.get("start", "pinned")
+    for before, after in pairwise(seats):
+        start = SpanEnd(kind, before.x, max(before.high, 0.0), before)
+        kind = "continuous"
+        if after is last and _ends_at(last, length) and not goes_on.get("end"):
+            kind = said.get("end", "pinned")
+        yield LineSpan(key, start, SpanEnd(kind, after.x, min(after.low, length), after))
+    if not _ends_at(last, length):
+        tip = SpanEnd("free", length, length)
+        yield LineSpan(key, SpanEnd("continuous", last.x, last.high, last), tip)
 
 
-def _kind(end: End, joined: Sequence[End], said: Mapping[End, SupportKind]) -> EndKind:
-    return "continuous" if end in joined else said.get(end, "pinned")
+def _ends_at(seat: Seat, length: float) -> bool:
+    """Whether a beam does not hang over past its last seat."""
+    return seat.place == "end" or seat.high >= length - TOLERANCE
 
 
-def _remarks(
-    frame: _Frame, key: str, seats: Sequence[Seat], spans: Sequence[LineSpan]
-) -> Iterator[Remark]:
+def _cantilever(seat: Seat, length: float) -> LineSpan:
+    if seat.place == "start":
+        held = SpanEnd("fixed", seat.high, seat.high, seat)
+        return LineSpan(seat.beam, held, SpanEnd("free", length, length))
+    held = SpanEnd("fixed", seat.low, seat.low, seat)
+    return LineSpan(seat.beam, SpanEnd("free", 0.0, 0.0), held)
+
+
+def _remarks(frame: _Frame, seats: Sequence[Seat], spans: Sequence[LineSpan]) -> Iterator[Remark]:
     """What an engineer must see of how a beam was stood."""
     for seat in seats:
         if seat.carrier:
             yield told.supported(seat)
-    for span in spans:
-        if "free" in (span.start.kind, span.end.kind):
-            yield told.hangs_over(span.beam, span.start, span.end)
-    for seat in seats:
-        if seat.place != "between" and (key, seat.place) in frame.meeting:
-            other = frame.bodies[frame.meeting[key, seat.place][0]].told
-            goes_on = any(
-                end.kind == "continuous" and end.seat is seat
-                for span in spans
-                for end in (span.start, span.end)
-            )
-            yield told.meets(seat, other, goes_on=goes_on)
+    first, last = spans[0].start, spans[-1].end
+    if first.kind == "free":
+        yield told.hangs_over(spans[0])
+    if last.kind == "free":
+        yield told.hangs_over(spans[-1])
+    for end, seat in ((first, seats[0]), (last, seats[-1])):
+        place = seat.place
+        if place != "between" and end.seat is seat and (seat.beam, place) in frame.meeting:
+            other = frame.bodies[frame.meeting[seat.beam, place][0]].told
+            yield told.meets(seat, other, goes_on=end.kind == "continuous")
 
 
 def _carriers_first(seats: Mapping[str, Sequence[Seat]], order: Order) -> tuple[str, ...]:
     """All that stands, what carries before what it carries."""
     below = {
-        key: {seat.carrier_beam for seat in seats[key] if not seat.doubt} & order.rounds.keys()
+        key: {seat.carrier_beam for seat in seats[key] if seat.carrier_beam and not seat.doubt}
         for key in order.rounds
     }
-    return tuple(TopologicalSorter(below).static_order())
+    resting = {key: carriers & order.rounds.keys() for key, carriers in below.items() if carriers}
+    first = [key for key in order.rounds if key not in resting]
+    later = TopologicalSorter(resting).static_order()
+    return (*first, *(key for key in later if key in resting))

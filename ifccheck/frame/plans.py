@@ -41,15 +41,3 @@ def _narrowed(covered: Floats, beam: Boxes, member: Member) -> Floats:
         return np.full((3, 2), np.nan)
     x0, y0, x1, y1 = common.bounds
     return np.array([[x0, x1], [y0, y1], covered[2]])
-
-
-def plan_of(member: Member) -> Floats:
-    """The ring of an upright member in plan [mm] (n, 2): its own, or that of its box."""
-    if member.plan:
-        return np.array(member.plan, np.float64)
-    box = member.box
-    up = max(range(3), key=lambda row: abs(box.axes[row][2]))
-    one, other = (np.array(box.axes[row]) * box.half[row] for row in range(3) if row != up)
-    centre = np.array(box.centre)
-    corners = [centre + a * one + b * other for a, b in ((-1, -1), (1, -1), (1, 1), (-1, 1))]
-    return np.array(corners)[:, :2]

@@ -7,14 +7,15 @@ carries the other; where neither does, nothing tells which.
 
 from __future__ import annotations
 
-from collections.abc import Iterator, Mapping, Sequence
+from collections.abc import Iterable, Mapping, Sequence, Set
 from operator import attrgetter
 from typing import Literal, NamedTuple
 
 from ifccheck.beam import Contact, Member
-from ifccheck.frame.carrying import DIRECT_CLASSES, Judged
+from ifccheck.frame.carrying import DIRECT_CLASSES, End, Judged
 from ifccheck.frame.contacts import TOLERANCE, kind_of
-from ifccheck.frame.spanning import Spanning, heights
+from ifccheck.frame.spanning import Spanning
+from ifccheck.frame.webs import levels_of
 
 Place = Literal["start", "end", "between"]
 Way = Literal["below", "end", "through"]
@@ -35,7 +36,11 @@ LEVEL = 0.02
 CORBEL = 1000.0
 """What is no longer, and fastened to the face of a column or wall, may be a corbel [mm]."""
 
+MAY_FILL = "it may only fill the space under the beam"
+
 _HOLDS_MOMENT = ("IfcColumn", "IfcWall")
+_FILLING = ("IfcWall", "IfcMember")
+"""What may end under a beam's soffit and carry nothing: partitions, mullions, braces"""
 _BEAMS = ("IfcBeam", "IfcMember")
 
 
@@ -87,8 +92,9 @@ class Candidate(NamedTuple):
     @property
     def rank(self) -> tuple[int, float, bool, str, int]:
         """Order of those at one place: what stands first, under the beam first, the wider first."""
-        order = ("below", "end", "through").index(self.way) + 2 * (self.carrier is not None)
         contact = self.contact
+        spans = self.carrier is not None or kind_of(contact.other_class) == "IfcMember"
+        order = ("below", "end", "through").index(self.way) + 2 * spans
         between = contact.place == "between"
         return order, self.low - self.high, between, contact.other, contact.other_step
 
@@ -96,26 +102,34 @@ class Candidate(NamedTuple):
 class Cluster(NamedTuple):
     """Members that touch a beam at one place and may carry it there."""
 
-    places: frozenset[Place]
+    place: Place
+    """Where along the beam it is"""
     candidates: tuple[Candidate, ...]
+    """What may be counted on first"""
+    stands: bool
+    """Whether one of them stands by itself and nothing speaks against it"""
+    carriers: tuple[str, ...]
+    """Keys of those that span, and that nothing speaks against at once"""
+    whole: bool = False
+    """Whether it reaches from end to end of the beam"""
 
-    @property
-    def place(self) -> Place:
-        """Where along the beam it is."""
-        return "start" if "start" in self.places else "end" if "end" in self.places else "between"
 
-    @property
-    def whole(self) -> bool:
-        """Whether it reaches from end to end."""
-        return {"start", "end"} <= self.places
+def levels_of_uprights(members: Iterable[Member]) -> dict[int, tuple[float, float]]:
+    """Least and greatest height of columns and walls [mm], by step id."""
+    return {
+        member.step_id: levels_of(member.box)
+        for member in members
+        if kind_of(member.ifc_class) in _HOLDS_MOMENT
+    }
 
 
 def clusters_of(
     body: Spanning,
     judged: Sequence[Judged],
-    members: Mapping[int, Member],
+    uprights: Mapping[int, tuple[float, float]],
     deeper: Mapping[int, str],
-) -> tuple[Cluster, ...]:
+    load_bearing: Set[int] = frozenset(),
+) -> list[Cluster]:
     """Places along a beam where something may carry it, in their order.
 
     Parameters
@@ -123,60 +137,118 @@ def clusters_of(
     body
         The beam.
     judged
-        Its contacts.
-    members
-        By step id.
+        Its contacts, in their order along it.
+    uprights
+        Least and greatest height of columns and walls [mm], by step id.
     deeper
         Keys of the beams that cross through it and carry it, by step id.
+    load_bearing
+        Step ids of walls and members that are known to carry what lies on them.
     """
-    found = sorted(_candidates(body, judged, members, deeper), key=_where)
+    filling = _filling(judged) - load_bearing
     clusters: list[list[Candidate]] = []
+    fillers: dict[int, Candidate] = {}
     reach = 0.0
-    for candidate in found:
-        if clusters and candidate.low <= reach + TOLERANCE:
+    for contact, carrier in judged:
+        if not contact.bears or contact.side == "above":
+            continue
+        if (way := _way(contact, deeper)) is None:
+            continue
+        candidate = _candidate(body, contact, carrier, way, uprights)
+        if contact.other_step in filling:
+            fillers[contact.other_step] = candidate
+        elif clusters and candidate.low <= reach + TOLERANCE:
             clusters[-1].append(candidate)
             reach = max(reach, candidate.high)
         else:
             clusters.append([candidate])
             reach = candidate.high
-    return tuple([_cluster(each) for each in clusters])
+    found = [_alone(each[0]) if len(each) == 1 else _together(each) for each in clusters]
+    return _with_fillers(found, fillers.values()) if fillers else found
 
 
-def _where(candidate: Candidate) -> tuple[float, float, str, int]:
-    return candidate.low, candidate.high, candidate.contact.other, candidate.contact.other_step
+def _with_fillers(clusters: Sequence[Cluster], fillers: Iterable[Candidate]) -> list[Cluster]:
+    """The places, and those where something may carry the beam and may only fill the space.
+
+    What fills no more than lies over a sure carrier changes nothing.
+    """
+    held = [each for cluster in clusters for each in cluster.candidates if not each.contact.doubt]
+    unsure = [
+        Cluster(
+            "between",
+            (one._replace(contact=one.contact._replace(doubt=one.contact.doubt or MAY_FILL)),),
+            stands=False,
+            carriers=(),
+        )
+        for one in fillers
+        if not any(
+            one.low >= each.low - TOLERANCE and one.high <= each.high + TOLERANCE for each in held
+        )
+    ]
+    return sorted((*clusters, *unsure), key=_low)
 
 
-def _cluster(candidates: Sequence[Candidate]) -> Cluster:
-    places = frozenset([each.contact.place for each in candidates])
-    if len(candidates) == 1:
-        return Cluster(places, tuple(candidates))
-    distinct = {each.contact.other_step: each for each in sorted(candidates, key=_rank)[::-1]}
+def _low(cluster: Cluster) -> float:
+    return cluster.candidates[0].low
+
+
+def _filling(judged: Sequence[Judged]) -> set[int]:
+    """Step ids of what reaches under a beam between its ends and may carry nothing."""
+    return {
+        contact.other_step
+        for contact, _ in judged
+        if contact.place == "between"
+        and contact.side == "below"
+        and kind_of(contact.other_class) in _FILLING
+    }
+
+
+def _alone(candidate: Candidate) -> Cluster:
+    contact, carrier, *_ = candidate
+    sure = not contact.doubt
+    carriers = (carrier,) if sure and carrier is not None else ()
+    return Cluster(contact.place, (candidate,), sure and carrier is None, carriers)
+
+
+def _together(candidates: Sequence[Candidate]) -> Cluster:
+    places = {each.contact.place for each in candidates}
+    best = {each.contact.other_step: each for each in sorted(candidates, key=_rank, reverse=True)}
     hung = any(each.way == "below" and each.carrier is not None for each in candidates)
-    chosen = sorted(distinct.values(), key=_rank)
-    return Cluster(places, tuple([c._replace(built_in=c.built_in and not hung) for c in chosen]))
+    chosen = [
+        each._replace(built_in=each.built_in and not hung)
+        for each in sorted(best.values(), key=_rank)
+    ]
+    sure = [each for each in chosen if not each.contact.doubt]
+    return Cluster(
+        place="start" if "start" in places else "end" if "end" in places else "between",
+        candidates=tuple(chosen),
+        stands=any(each.carrier is None for each in sure),
+        carriers=tuple([each.carrier for each in sure if each.carrier is not None]),
+        whole={"start", "end"} <= places,
+    )
 
 
 _rank = attrgetter("rank")
 
 
-def _candidates(
+def _candidate(
     body: Spanning,
-    judged: Sequence[Judged],
-    members: Mapping[int, Member],
-    deeper: Mapping[int, str],
-) -> Iterator[Candidate]:
-    for contact, carrier in judged:
-        if not contact.bears:
-            continue
-        if (way := _way(contact, deeper)) is None:
-            continue
-        low, high = contact.start, contact.end
-        if contact.place == "start":
-            low -= contact.beyond
-        elif contact.place == "end":
-            high += contact.beyond
-        built_in = contact.place != "between" and _holds_moment(body, contact, members)
-        yield Candidate(contact, carrier, way, low, high, built_in)
+    contact: Contact,
+    carrier: str | None,
+    way: Way,
+    uprights: Mapping[int, tuple[float, float]],
+) -> Candidate:
+    low, high, place = contact.start, contact.end, contact.place
+    if place == "between":
+        return Candidate(contact, carrier, way, low, high, built_in=False)
+    if place == "start":
+        low -= contact.beyond
+    else:
+        high += contact.beyond
+    levels = uprights.get(contact.other_step)
+    return Candidate(
+        contact, carrier, way, low, high, levels is not None and _covers(body, place, *levels)
+    )
 
 
 def _way(contact: Contact, deeper: Mapping[int, str]) -> Way | None:
@@ -187,11 +259,9 @@ def _way(contact: Contact, deeper: Mapping[int, str]) -> Way | None:
     return None
 
 
-def _holds_moment(body: Spanning, contact: Contact, members: Mapping[int, Member]) -> bool:
-    if kind_of(contact.other_class) not in _HOLDS_MOMENT:
-        return False
-    soffit = body.soffit(0.0 if contact.place == "start" else body.length)
-    low, high = heights(members[contact.other_step].box)
+def _covers(body: Spanning, end: End, low: float, high: float) -> bool:
+    """Whether what stands from one height to another covers most of the depth of a beam's end."""
+    soffit = body.soffit(0.0 if end == "start" else body.length)
     return low <= soffit + TOLERANCE and high >= soffit + BUILT_IN_DEPTH * body.depth - TOLERANCE
 
 
@@ -209,31 +279,30 @@ def _fastens(contact: Contact) -> bool:
     return beside and kind_of(contact.other_class) in _HOLDS_MOMENT
 
 
-def seat_of(body: Spanning, cluster: Cluster, held: Sequence[Candidate], doubt: str = "") -> Seat:
-    """The seat of a beam at a place, on the first of those that can be counted on there."""
-    first, place = held[0], cluster.place
-    contact = first.contact
-    half = min(first.high - first.low, body.depth) / 2.0
-    centre = {
-        "start": first.high - half,
-        "end": first.low + half,
-        "between": (first.low + first.high) / 2.0,
-    }
+def seat_of(body: Spanning, cluster: Cluster, first: Candidate, doubt: str = "") -> Seat:
+    """The seat of a beam at a place, on one of those that may carry it there."""
+    contact, _, way, low, high, _ = first
+    place = cluster.place
+    half = min(high - low, body.depth) / 2.0
+    x = high - half if place == "start" else low + half if place == "end" else (low + high) / 2.0
+    others: tuple[str, ...] = ()
+    if len(cluster.candidates) > 1:
+        others = tuple([each.contact.other for each in cluster.candidates if each is not first])
     return Seat(
-        beam=body.key,
-        place=place,
-        x=centre[place],
-        low=first.low,
-        high=first.high,
-        carrier=contact.other_step,
-        carrier_name=contact.other,
-        carrier_class=contact.other_class,
-        carrier_beam=first.carrier or "",
-        way=first.way,
-        direct=first.way == "below" or contact.other_class.startswith(DIRECT_CLASSES),
-        built_in=first.built_in,
-        others=tuple([each.contact.other for each in cluster.candidates if each is not first]),
-        doubt=doubt,
+        body.key,
+        place,
+        x,
+        low,
+        high,
+        contact.other_step,
+        contact.other,
+        contact.other_class,
+        first.carrier or "",
+        way,
+        way == "below" or contact.other_class.startswith(DIRECT_CLASSES),
+        first.built_in,
+        others,
+        doubt,
     )
 
 

@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterable, Mapping, Sequence
 from typing import NamedTuple
 
-from ifccheck.beam import Beam, Box, Member, Vector
+from ifccheck.beam import Beam, Member, Vector
 from ifccheck.frame.boxes import section_extent
 
 
@@ -80,9 +80,3 @@ def _of_box(key: str, member: Member) -> Spanning:
     )
     told = f"{member.name or member.guid} ({member.ifc_class})"
     return Spanning(key, member.step_id, told, (cx, cy, cz), x, 2.0 * half[along], 2.0 * half[up])
-
-
-def heights(box: Box) -> tuple[float, float]:
-    """Least and greatest height of a box in the building [mm]."""
-    reach = sum(abs(axis[2]) * half for axis, half in zip(box.axes, box.half, strict=True))
-    return box.centre[2] - reach, box.centre[2] + reach

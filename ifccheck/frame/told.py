@@ -3,9 +3,10 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
+from functools import lru_cache
 
 from ifccheck.beam import Contact, Reason, Remark
-from ifccheck.frame.beam_lines import SpanEnd
+from ifccheck.frame.beam_lines import LineSpan
 from ifccheck.frame.seats import Seat
 from ifccheck.units import show
 
@@ -22,8 +23,9 @@ def supported(seat: Seat) -> Remark:
     return _assumed(seat.beam, text)
 
 
-def hangs_over(beam: str, start: SpanEnd, end: SpanEnd) -> Remark:
+def hangs_over(span: LineSpan) -> Remark:
     """A cantilever, or an overhang past the last support."""
+    beam, start, end, _ = span
     held, tip = (start, end) if end.kind == "free" else (end, start)
     length = show(end.x - start.x, "length")
     if held.kind == "fixed" and held.seat:
@@ -56,7 +58,11 @@ def unsure(seats: Sequence[Seat]) -> str:
         f"at x = {_x(seat.x)} it touches only what may not carry it ({seat.doubt})"
         for seat in seats
     )
-    return f"{places}{_ANSWER}"
+    between = [seat.carrier_name for seat in seats if seat.place == "between"]
+    if not between:
+        return f"{places}{_ANSWER}"
+    name = between[0].rpartition(" (")[0]
+    return f'{places}; if it does not hold the beam, write ignore = ["{name}"] under [[supports]]'
 
 
 def no_way(seats: Sequence[Seat]) -> str:
@@ -89,9 +95,11 @@ def _assumed(beam: str, text: str) -> Remark:
     return Remark(beam, "supports", text, "assumption")
 
 
+@lru_cache(maxsize=4096)
 def _x(x: float) -> str:
     return show(x, "length")
 
 
+@lru_cache(maxsize=4096)
 def _mm(width: float) -> str:
     return show(width, "dimension")

@@ -83,8 +83,10 @@ def web_of(member: Member) -> Web:
 
 def levels_of(box: Box) -> tuple[float, float]:
     """Least and greatest height of a box in the building [mm]."""
-    reach = sum(abs(axis[2]) * half for axis, half in zip(box.axes, box.half, strict=True))
-    return box.centre[2] - reach, box.centre[2] + reach
+    (_, _, a), (_, _, b), (_, _, c) = box.axes
+    half_a, half_b, half_c = box.half
+    middle, reach = box.centre[2], abs(a) * half_a + abs(b) * half_b + abs(c) * half_c
+    return middle - reach, middle + reach
 
 
 def ring_of(box: Box) -> Ring:
