@@ -557,3 +557,28 @@ def test_loads_on_a_beam_itself_without_an_analysis_member() -> None:
     laid = only(hall.read())
     assert (laid.start, laid.end) == pytest.approx((0.0, 6000.0))
     assert laid.values[0] == pytest.approx(10.0)
+
+
+def test_an_action_without_an_item_lies_where_its_case_puts_it() -> None:
+    """Its analysis model is the one that the case loads, whose placement is 3 m up."""
+    hall = Hall("IFC4X3", "METRE", shared=((0.0, 0.0, 3000.0),))
+    analysis = hall.analysis
+    shape = analysis.edge((1000, 0, 0), (2000, 0, 0))
+    analysis.along(None, analysis.linear(**DOWN), analysis.case("Live"), shape=shape)
+    laid = only(hall.read())
+    assert (laid.start, laid.end) == pytest.approx((1000.0, 2000.0))
+
+
+@pytest.mark.parametrize(("z", "read"), [((0.0, 0.0, 1.0), True), ((0.0, -1.0, 0.0), False)])
+def test_a_plane_model_in_axes_of_its_own_is_not_taken_for_one_in_space(
+    z: tuple[float, float, float], read: bool
+) -> None:
+    hall = Hall("IFC2X3")
+    analysis = hall.analysis
+    analysis.model.PredefinedType = "IN_PLANE_LOADING_2D"
+    analysis.model.OrientationOf2DPlane = hall.building.axes((0, 0, 0), z, (1.0, 0.0, 0.0))
+    member = analysis.member((0, 0, 3000), (6000, 0, 3000))
+    analysis.along(member, analysis.linear(**DOWN), analysis.case("Live"))
+    model = hall.read()
+    assert bool(model.loads.laid) is read
+    assert ("is plane, in axes that its loads may act in" in doubts(model)) is not read

@@ -13,6 +13,8 @@ from ifccheck.errors import BriefError
 from ifccheck.ifc.opening import open_model
 from ifccheck.ifc.reader import read_model
 from ifccheck.pipeline import Run, rate
+from ifccheck.publish.html import render
+from ifccheck.publish.sheet_html import sheet_html
 from ifccheck.rating import Rating
 from ifccheck.surveying import survey
 from tests.models import LENGTH_UNITS, MadeBeam, Model, Setting, brief, load, model, rectangle
@@ -183,6 +185,21 @@ def test_what_is_lost_is_told_with_its_size(tmp_path: Path, made: Made) -> None:
     made.analysis.at(made.analysis.node((0, 9000, 0)), made.analysis.single(z=-20e3), made.case)
     run = made.rated(tmp_path, taking(TAKES))
     assert "'Live' of the model: 20.0 kN of 80.0 kN act on no beam in scope" in remarks(run)
+
+
+def test_names_of_strangers_are_shown_as_text(tmp_path: Path, made: Made) -> None:
+    made.case.Name = "<script>x</script>\x07"
+    made.analysis.along(made.member, made.analysis.linear(z=-1.0), made.case, name="<i>Snow</i>")
+    page = render(made.rated(tmp_path, brief(LINE)).reports[0])
+    taken = taking(f'{FLOOR}\nfrom_model = "<script>x</script>\\u0007"')
+    (tmp_path / "brief.toml").write_text(taken, encoding="utf-8")
+    report = rate([tmp_path / "hall.ifc"], tmp_path / "brief.toml").reports[0]
+    (key,) = report.ratings
+    page += sheet_html(report.sheet(key), "")
+    assert "&lt;script&gt;x" in page
+    assert "&lt;i&gt;Snow" in page
+    for raw in ("<script>x", "<i>Snow", "\x07"):
+        assert raw not in page
 
 
 def test_a_nature_that_contradicts_the_model_is_told(tmp_path: Path, made: Made) -> None:

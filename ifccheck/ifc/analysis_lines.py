@@ -8,7 +8,7 @@ from typing import Any, NamedTuple
 import numpy as np
 import numpy.typing as npt
 
-from ifccheck.ifc.entity import Entity, UnreadableError, get, label, need, numbers, several
+from ifccheck.ifc.entity import Entity, UnreadableError, get, label, need, numbers, several, text
 from ifccheck.ifc.load_groups import LoadGroups
 from ifccheck.ifc.placements import IDENTITY, Matrix, Placements
 from ifccheck.ifc.vectors import unit
@@ -58,9 +58,18 @@ class Places:
     def axes(self, item: Entity) -> Matrix:
         """Directions (columns) that loads in global coordinates have on an item."""
         model = self._groups.model_of(item)
+        if model is not None and self._has_own_axes(model):
+            raise UnreadableError(f"{label(model)} is plane, in axes that its loads may act in")
         if model is not None and get(model, "SharedPlacement") is not None:
             return self.shared(item)[:3, :3]
         return self.matrix(item)[:3, :3]
+
+    def _has_own_axes(self, model: Entity) -> bool:
+        """Whether a plane model is oriented otherwise than the building."""
+        plane = get(model, "OrientationOf2DPlane")
+        if plane is None or not text(model, "PredefinedType").endswith("2D"):
+            return False
+        return not np.allclose(self._placements.axes(plane)[:3, :3], np.eye(3))
 
     def local_axes(self, item: Entity, line: Stretch) -> Matrix:
         """Directions (columns) of a curve member's own axes: x along it, z nearest to its Axis.

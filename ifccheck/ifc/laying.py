@@ -12,7 +12,7 @@ from ifccheck.beam import Beam, LaidAction
 from ifccheck.ifc.analysis_lines import Stretch, Vector
 from ifccheck.ifc.applied_loads import Applied, Piece, Spot
 from ifccheck.ifc.placements import Matrix
-from ifccheck.units import ShownKind, show
+from ifccheck.units import ShownKind, clipped, show
 
 NEAR = 1000.0
 """Distance [mm] within which a member that stands for no beam may be meant to stand for one"""
@@ -136,7 +136,7 @@ class Source(NamedTuple):
         """A value for people, with the factor."""
         times = "" if self.factor == 1.0 else f", factor {self.factor:g} included"
         plain = float(f"{value:.9g}")  # 9.999999999 is 10 in another unit
-        return f"{show(plain, kind)} of the model's load case '{self.case}'{times}"
+        return f"{show(plain, kind)} of the model's load case {clipped(self.case)}{times}"
 
 
 def lay_piece(piece: Piece, held: Held, source: Source) -> Iterator[LaidAction | str]:

@@ -28,6 +28,11 @@ class LoadGroups:
         self._models: dict[int, Entity] = {}
         for relation in file.by_type("IfcRelAssignsToGroup"):
             self._add(relation)
+        self._loaded: dict[int, Entity] = {
+            group.id(): model
+            for model in file.by_type("IfcStructuralAnalysisModel")
+            for group in several(model, "LoadedBy")
+        }
         self._cases: defaultdict[str, list[Entity]] = defaultdict(list)
         for group in file.by_type("IfcStructuralLoadGroup"):
             if text(group, "PredefinedType") == CASE and text(group, "Name"):
@@ -47,8 +52,12 @@ class LoadGroups:
                 self._groups[member.id()].append(share)
 
     def model_of(self, item: Entity) -> Entity | None:
-        """The analysis model that an item or an action is assigned to."""
-        return self._models.get(item.id())
+        """The analysis model that an item or an action is assigned to, or that it loads."""
+        if (found := self._models.get(item.id())) is not None:
+            return found
+        groups = [group for group, _ in self._groups[item.id()]]
+        groups += [share.case for share in self.shares(item)]
+        return next((self._loaded[g.id()] for g in groups if g.id() in self._loaded), None)
 
     def shares(self, action: Entity) -> list[Share]:
         """The cases that an action acts in, the factors of several ways to one added up."""
