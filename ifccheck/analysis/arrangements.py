@@ -20,7 +20,7 @@ class MovingEffects:
     same time."""
 
     case: Ints
-    """Row of each case among all cases (G), for which nothing stands still"""
+    """Row of each case among all cases (G)"""
     moment: Floats
     """[N*mm] (4, G, N)"""
     shear: Floats
@@ -34,11 +34,12 @@ class MovingEffects:
 def put_in(
     moving: MovingEffects | None, arrangement: int, moment: Floats, shear: Floats
 ) -> tuple[Floats, Floats]:
-    """Moments and shears of all cases (K, N), those of moving cases as in an arrangement."""
+    """Moments and shears of all cases (K, N), with what moves as it stands in an arrangement."""
     if moving is None:
         return moment, shear
     moment, shear = moment.copy(), shear.copy()
-    moment[moving.case], shear[moving.case] = moving.moment[arrangement], moving.shear[arrangement]
+    moment[moving.case] += moving.moment[arrangement]
+    shear[moving.case] += moving.shear[arrangement]
     return moment, shear
 
 

@@ -83,7 +83,7 @@ def support_reactions(solved: Solved, lines: LineTable) -> Reactions:
     The sum of the shears of both sides and the jump of the moment: in equilibrium with the loads
     but for rounding.
     """
-    near, far = _outer_moments(solved, lines.span)
+    near, far = outer_moments(solved, lines.span)
     first = solved.start.reaction[:, lines.span]
     last = solved.totals.force[:, lines.span] - first
     against = lines.reversed
@@ -97,7 +97,7 @@ def support_reactions(solved: Solved, lines: LineTable) -> Reactions:
     return Reactions(np.where(tips(solved.spans, lines), 0.0, force), moment * (turning > 0.0))
 
 
-def _outer_moments(solved: Solved, rows: Ints) -> tuple[Floats, Floats]:
+def outer_moments(solved: Solved, rows: Ints) -> tuple[Floats, Floats]:
     """Moments at start and end of spans, beyond all that acts there (K, S)."""
     start, totals = solved.start, solved.totals
     near = start.moment[:, rows]
@@ -142,7 +142,7 @@ def _members(solved: Solved, lines: LineTable, curvature: Curvature | None) -> _
         turn = np.where(constant, turn, np.stack([sums.start[:, rows], sums.end[:, rows]]))
     first = solved.start.reaction[:, rows]
     force = np.stack([first, solved.totals.force[:, rows] - first])
-    root = np.stack(_outer_moments(solved, rows))
+    root = np.stack(outer_moments(solved, rows))
     against = lines.reversed
     near, across, far = np.where(against, flexible[::-1], flexible)
     stiff = np.array([[far, -across], [-across, near]]) / (near * far - across**2)

@@ -45,7 +45,7 @@ class CaseEffects:
     end_moments: Floats
     """Moment just inside the start and the end of the span [N*mm] (K, B, 2)"""
     moving: MovingEffects | None = None
-    """Cases that move, whose rows above are 0; None where none does"""
+    """What moves of the cases, besides what stands still above; None where nothing does"""
 
 
 @dataclass(frozen=True, slots=True)
