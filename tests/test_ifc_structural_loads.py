@@ -5,6 +5,7 @@ from __future__ import annotations
 import math
 from typing import Any
 
+import numpy as np
 import pytest
 
 from ifccheck.beam import LaidAction, Model, ModelCase
@@ -80,6 +81,31 @@ def test_a_line_load_reaches_the_beam_in_every_schema_and_unit(
     assert case_of(model, "Live").permanent is False
     assert not model.loads.doubts
     assert not case_of(model, "Live").lost
+
+
+def test_the_relation_of_ifc2x3_between_an_element_and_its_member_ties_too() -> None:
+    hall = Hall("IFC2X3", "FOOT", "kip")
+    analysis = hall.analysis
+    member = analysis.member((0, 0, 3450), (6000, 0, 3450))
+    analysis.root(
+        "IfcRelConnectsStructuralElement", RelatingElement=hall.beams[0],
+        RelatedStructuralMember=member,
+    )  # fmt: skip
+    analysis.along(member, analysis.linear(**DOWN), analysis.case("Live"))
+    model = hall.read()
+    assert only(model).values == pytest.approx((10.0, 10.0))
+    assert not model.loads.doubts
+
+
+def test_a_tied_member_beside_the_beam_asks_for_torsion() -> None:
+    hall = Hall()
+    analysis = hall.analysis
+    member = analysis.member((0, 600, 3000), (6000, 600, 3000))
+    analysis.tie(member, hall.beams[0])
+    analysis.along(member, analysis.linear(**DOWN), analysis.case("Live"))
+    model = hall.read()
+    assert only(model).values == pytest.approx((10.0, 10.0))
+    assert "it lies beside the beam: torsion is not checked" in doubts(model)
 
 
 def test_a_member_that_is_not_tied_and_lies_off_the_body_reaches_no_beam() -> None:
@@ -582,3 +608,28 @@ def test_a_plane_model_in_axes_of_its_own_is_not_taken_for_one_in_space(
     model = hall.read()
     assert bool(model.loads.laid) is read
     assert ("is plane, in axes that its loads may act in" in doubts(model)) is not read
+
+
+@pytest.mark.parametrize(
+    "along", [(1, 0, 0), (0, 1, 0), (-0.6, 0.8, 0), (0.6, -0.8, 0), (0, 0.8, 0.6)]
+)
+@pytest.mark.parametrize("backwards", [False, True])
+def test_a_load_stays_at_its_place_in_the_building_however_the_beam_lies(
+    along: tuple[float, float, float], backwards: bool
+) -> None:
+    """4 N/mm at 1 m from the beam's first end to 9 N/mm at 4 m, wherever its own start is."""
+    hall = Hall("IFC4X3", "METRE", along=tuple(map(float, along)))
+    analysis = hall.analysis
+    ends = [tuple(np.array((0.0, 0.0, 3000.0)) + t * np.array(along)) for t in (0.0, 6000.0)]
+    member = analysis.member(*(ends[::-1] if backwards else ends), axis=(1.0, 2.0, 3.0))
+    values = [(1000.0, analysis.linear(z=-4.0)), (4000.0, analysis.linear(z=-9.0))]
+    if backwards:
+        values = [(6000.0 - place, load) for place, load in reversed(values)]
+    analysis.along(member, analysis.configured(values), analysis.case("Live"), kind="LINEAR")
+    model = hall.read()
+    laid, axis = only(model), model.beams[0].axis
+    assert axis is not None
+    for place, value in zip((laid.start, laid.end), laid.values, strict=True):
+        at = np.array(axis.origin) + place * np.array(axis.x)
+        from_first = float((at - np.array(ends[0])) @ np.array(along))
+        assert value == pytest.approx(4.0 + 5.0 * (from_first - 1000.0) / 3000.0, abs=1e-6)

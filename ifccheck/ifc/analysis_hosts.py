@@ -72,6 +72,11 @@ class Finder:
                 for item, element in ((one, other), (other, one)):
                     if item.is_a("IfcStructuralItem") and element.is_a("IfcElement"):
                         tied[item.id()].append(element.id())
+        if file.schema == "IFC2X3":
+            for relation in file.by_type("IfcRelConnectsStructuralElement"):
+                ends = (get(relation, "RelatedStructuralMember"), get(relation, "RelatingElement"))
+                if None not in ends:
+                    tied[ends[0].id()].append(ends[1].id())
         return dict(tied)
 
     def _ties_of(self, item: Entity | None) -> list[int]:
