@@ -26,6 +26,7 @@ from ifccheck.analysis.stiffness import Curvature, places_between
 from ifccheck.analysis.trains import Train
 from tests.line_models import Line, load_rows, tables
 
+SINGLE_SPANS = ("ST-SS-", "ST-FF-", "ST-PC-", "ST-CANT")
 NO_LOADS = load_rows([])
 EI = 2.0e13
 
@@ -131,6 +132,15 @@ def test_three_equal_wheels_on_a_simple_span() -> None:
     found = moving_effects(spans, lines, [case], stations_of(spans, 400))
     assert found is not None
     assert found.moment[GREATEST_MOMENT, 0].max() == pytest.approx(1e3 * (7500.0 - 1500.0))
+
+
+def test_every_published_line_of_the_shared_stock_is_covered(reference: Path) -> None:
+    stock = yaml.safe_load((reference / "statics.yaml").read_text())
+    names = {entry["id"] for entry in stock if not entry["id"].startswith(SINGLE_SPANS)}
+    lines = {f"ST-CONT-{count}" for count in (2, 3, 4, 6)} | {"ST-CONT4-ALT"}
+    patterns = {f"ST-PATT-{count}" for count in (2, 4, 5)}
+    moving = {f"ST-MOV-2P-{name}" for name in ("0.2", "0.4", "0.5", "far")}
+    assert names == lines | patterns | moving | {"ST-MOV-8m", "ST-MOV-20m", "ST-CRANE-R"}
 
 
 # --- set down at every millimetre ------------------------------------------------------------
@@ -381,6 +391,39 @@ def test_the_place_of_a_wheel_at_a_station_is_seen_from_both_sides() -> None:
     assert found.shear[LEAST_SHEAR, 0, 1] == pytest.approx(-2e3)
     assert found.moment[GREATEST_MOMENT, 0, 1] == pytest.approx(6e6)
     assert found.shear[GREATEST_SHEAR, 0, 0] == pytest.approx(6e3)
+
+
+def test_the_places_of_trains_are_told() -> None:
+    """Set down where they are said to stand, they do what they are said to do."""
+    line = small_line(np.random.default_rng(21), 3)
+    spans, _, lines = tables([line])
+    one, two = train((0.0, 4e3), (300.0, 1e3)), train((0.0, 2e3), (200.0, 7e3))
+    case = MovingCase(0, 0, (one, two), 0.0, sum(line.lengths), approach=250.0)
+    stations = off_the_grid(spans, 5)
+    found = moving_effects(spans, lines, [case], stations)
+    assert found is not None
+    for arrangement in range(4):
+        wheels = []
+        for station in range(stations.x.size):
+            turned = bool(found.turned[arrangement, 0, station])
+            order = (two.turned(), one.turned()) if turned else (one, two)
+            standing = [
+                (each.places + place, each.forces)
+                for each, place in zip(order, found.places[:, arrangement, 0, station], strict=True)
+                if not np.isnan(place)
+            ]
+            assert standing
+            if len(standing) == 2:
+                assert standing[1][0][0] - standing[0][0][-1] >= case.approach - 1e-4
+            wheels.append(tuple(np.concatenate(part) for part in zip(*standing, strict=True)))
+        effects, _ = swept(spans, lines, None, stations, wheels)
+        own = (found.moment if arrangement < 2 else found.shear)[arrangement, 0]
+        each = np.arange(stations.x.size)
+        set_down = (effects.moment if arrangement < 2 else effects.shear)[each, each]
+        # A wheel at a station, where the shear jumps by it, may be meant on either side.
+        jumps = np.array([0.0] if arrangement < 2 else [0.0, 1e3, 2e3, 4e3, 7e3])
+        apart = np.abs(np.abs(set_down - own)[:, None] - jumps).min(axis=1)
+        assert (apart <= 1e-5 * np.abs(own).max()).all()
 
 
 def test_a_train_that_fits_exactly_stands_still() -> None:

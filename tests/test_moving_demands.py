@@ -13,7 +13,7 @@ from ifccheck.analysis.arrangements import (
     LEAST_MOMENT,
     LEAST_SHEAR,
 )
-from ifccheck.analysis.effects import case_share, combine, demands
+from ifccheck.analysis.effects import case_share, combine, demands, scaled_case
 from ifccheck.analysis.line_table import LineTable, simple_lines
 from ifccheck.analysis.lines import continuous
 from ifccheck.analysis.loads import LINE, LoadTable
@@ -107,6 +107,19 @@ def test_a_moving_case_that_is_rated_is_multiplied(by: float) -> None:
         np.testing.assert_allclose(
             found, getattr(wanted, name), rtol=0, atol=1e-11 * size, err_msg=name
         )
+
+
+def test_a_case_scaled_before_is_one_with_greater_factors() -> None:
+    stations, cases = effects_along(12)
+    for case in (FLOOR, CRANE):
+        grown = scaled_case(cases, case, np.full(stations.x.size, 1.7))
+        more = FACTORS.copy()
+        more[:, case] *= 1.7
+        found, wanted = combine(grown, FACTORS), combine(cases, more)
+        for name in ("moment", "shear"):
+            np.testing.assert_allclose(
+                getattr(found, name), getattr(wanted, name), rtol=1e-12, atol=1e-6
+            )
 
 
 def test_shares_of_all_cases_are_the_whole() -> None:

@@ -7,7 +7,7 @@ from dataclasses import dataclass, replace
 
 import numpy as np
 
-from ifccheck.mechanics.arrays import Floats, Ints
+from ifccheck.mechanics.arrays import Bools, Floats, Ints
 
 GREATEST_MOMENT, LEAST_MOMENT, GREATEST_SHEAR, LEAST_SHEAR = range(4)
 ARRANGEMENTS = 4
@@ -25,10 +25,23 @@ class MovingEffects:
     """[N*mm] (4, G, N)"""
     shear: Floats
     """[N] (4, G, N)"""
+    places: Floats
+    """Where the first wheel from the left stands, of the train on the left and of that on the
+    right, along the line [mm] (2, 4, G, N); nan where that train is not there"""
+    turned: Bools
+    """Whether the trains and their order are turned round (4, G, N)"""
 
     def take(self, rows: Ints) -> MovingEffects:
         """The same at some of the stations."""
-        return replace(self, moment=self.moment[..., rows], shear=self.shear[..., rows])
+        return MovingEffects(self.case, *(getattr(self, name)[..., rows] for name in BY_STATION))
+
+    def times(self, rows: Ints, multiple: Floats) -> MovingEffects:
+        """The same with the forces of some cases multiplied at each station (N)."""
+        by = np.where(np.isin(self.case, rows)[:, None], multiple, 1.0)
+        return replace(self, moment=self.moment * by, shear=self.shear * by)
+
+
+BY_STATION = ("moment", "shear", "places", "turned")
 
 
 def put_in(
@@ -57,11 +70,13 @@ def join_moving(
         return None
     if first is None or second is None or not np.array_equal(first.case, second.case):
         raise ValueError("moving cases must be known at all stations or at none")
-    moment, shear = (
-        np.concatenate(parts, axis=-1)[..., rows]
-        for parts in ((first.moment, second.moment), (first.shear, second.shear))
+    return MovingEffects(
+        first.case,
+        *(
+            np.concatenate([getattr(first, name), getattr(second, name)], axis=-1)[..., rows]
+            for name in BY_STATION
+        ),
     )
-    return MovingEffects(first.case, moment, shear)
 
 
 def weighted(factors: Floats, effects: Floats) -> Floats:

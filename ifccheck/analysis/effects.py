@@ -178,6 +178,19 @@ def _row_share(effects: Effects, row: int) -> Floats:
     return share
 
 
+def scaled_case(
+    cases: CaseEffects, case: int, multiple: Floats, parts: Ints | None = None
+) -> CaseEffects:
+    """The effects with the loads of one case multiplied at each station (N); its rows as for
+    ``case_share``."""
+    rows = np.array([case]) if parts is None else np.flatnonzero(parts == case)
+    moment, shear = cases.moment.copy(), cases.shear.copy()
+    moment[rows] *= multiple
+    shear[rows] *= multiple
+    moving = None if cases.moving is None else cases.moving.times(rows, multiple)
+    return replace(cases, moment=moment, shear=shear, moving=moving)
+
+
 @dataclass(frozen=True, slots=True)
 class Demands:
     """What acts at each station, and the part of each case that may be multiplied.

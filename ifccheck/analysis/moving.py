@@ -19,7 +19,7 @@ from ifccheck.analysis.statics import NEGLIGIBLE
 from ifccheck.analysis.stations import SAME_PLACE, StationTable, starts
 from ifccheck.analysis.stiffness import Curvature
 from ifccheck.analysis.trains import Standing, Train, Way, stand
-from ifccheck.mechanics.arrays import Floats, Ints
+from ifccheck.mechanics.arrays import Bools, Floats, Ints
 
 STATIONS_AT_ONCE = 256
 """Stations that are worked out together, which bounds memory"""
@@ -99,16 +99,19 @@ def moving_effects(
     if not moving:
         return None
     _require_ways(spans, lines, moving)
-    case = np.unique([each.case for each in moving])
-    found = np.zeros((2, ARRANGEMENTS, len(case), len(stations.x)))
+    case = np.unique([each.case for each in moving]).astype(np.intp, copy=False)
+    shape = ARRANGEMENTS, len(case), len(stations.x)
+    effects, places = np.zeros((2, *shape)), np.full((2, *shape), np.nan)
+    turned = np.zeros(shape, np.bool_)
     for each in moving:
         line = line_influence(spans, lines, each.line, curvature)
         rows = np.flatnonzero(np.isin(stations.beam, line.rows))
         here = StationTable(stations.beam[rows], stations.x[rows], stations.side[rows])
-        extremes = _envelope(of_stations(line, here), each)
+        found = _envelope(of_stations(line, here), each)
         row = int(np.searchsorted(case, each.case))
-        found[:, :, row, rows] = _without_noise(extremes, here.beam)
-    return MovingEffects(case.astype(np.intp, copy=False), found[0], found[1])
+        effects[:, :, row, rows] = _without_noise(found.effects, here.beam)
+        places[:, :, row, rows], turned[:, row, rows] = found.places, found.turned
+    return MovingEffects(case, effects[0], effects[1], places, turned)
 
 
 def moving_reactions(
@@ -123,11 +126,11 @@ def moving_reactions(
     greatest, least = np.zeros((2, len(case), lines.nodes))
     for each in moving:
         influence = of_reactions(line_influence(spans, lines, each.line, curvature))
-        extremes = _envelope(influence, each)
+        effects = _envelope(influence, each).effects
         first = lines.first_nodes[each.line]
         row = int(np.searchsorted(case, each.case))
-        nodes = slice(first, first + extremes.shape[-1])
-        greatest[row, nodes], least[row, nodes] = extremes[0, 0], extremes[0, 1]
+        nodes = slice(first, first + effects.shape[-1])
+        greatest[row, nodes], least[row, nodes] = effects[0, 0], effects[0, 1]
     return MovingReactions(case, greatest, least)
 
 
@@ -153,7 +156,20 @@ def _require_ways(spans: SpanTable, lines: LineTable, moving: Sequence[MovingCas
                 raise ValueError(f"a train of moving case {each.case} is longer than its way")
 
 
-def _envelope(influence: Influence, moving: MovingCase) -> Floats:
+@dataclass(frozen=True, slots=True)
+class _Found:
+    """Trains at several places (..., C), or where they make the extremes (..., 4, T)."""
+
+    effects: Floats
+    """(E, ...); nan where the trains may not stand so"""
+    places: Floats
+    """Of the first wheel of the train on the left and of that on the right [mm] (2, ...); nan
+    where it is not there"""
+    turned: Bools
+    """(...)"""
+
+
+def _envelope(influence: Influence, moving: MovingCase) -> _Found:
     """Extremes of the first effect and of the last, with the other one (2, 4, T).
 
     Along the second axis: the arrangements; of a single effect the first two alone have meaning.
@@ -161,37 +177,55 @@ def _envelope(influence: Influence, moving: MovingCase) -> Floats:
     parts = []
     for first in range(0, len(influence.edges), STATIONS_AT_ONCE):
         some = influence.take(slice(first, first + STATIONS_AT_ONCE))
-        found = [one for trains in _orders(moving) for one in _standings(some, moving, trains)]
-        parts.append(_extremes(found))
-    return np.concatenate(parts, axis=-1)
+        found = [one for order in _orders(moving) for one in _standings(some, moving, *order)]
+        parts.append(_extremes(_joined(found)))
+    return _joined(parts)
 
 
-def _orders(moving: MovingCase) -> list[tuple[Train, ...]]:
+def _joined(parts: Sequence[_Found]) -> _Found:
+    return _Found(
+        *(
+            np.concatenate([getattr(part, name) for part in parts], axis=-1)
+            for name in _Found.__slots__
+        )
+    )
+
+
+def _orders(moving: MovingCase) -> list[tuple[tuple[Train, ...], bool]]:
     """The trains in their order along the line, and turned round."""
     given = tuple(train.times(moving.dynamic) for train in moving.trains)
     if not moving.turns:
-        return [given]
-    return [given, tuple(train.turned() for train in reversed(given))]
+        return [(given, False)]
+    return [(given, False), (tuple(train.turned() for train in reversed(given)), True)]
 
 
 def _standings(
-    influence: Influence, moving: MovingCase, trains: tuple[Train, ...]
-) -> Iterator[Floats]:
-    """Candidates (E, T, C) for the extremes, nan where the trains may not stand so."""
+    influence: Influence, moving: MovingCase, trains: tuple[Train, ...], turned: bool
+) -> Iterator[_Found]:
+    """Candidates for the extremes: each train alone, then both."""
     way = Way(moving.start, moving.end, moving.stays)
     each = [stand(influence, train, way) for train in trains]
-    for one in each:
-        yield np.where(one.counts, one.effects, np.nan)
+    for number, one in enumerate(each):
+        nowhere = np.full_like(one.place, np.nan)
+        places = (one.place, nowhere) if number == 0 else (nowhere, one.place)
+        yield _found(one.effects, one.counts, *places, turned)
     if len(trains) == 2:
         nearest = trains[0].before(trains[1], moving.approach)
+        apart = trains[0].length + moving.approach
         if not moving.stays or nearest.length <= moving.end - moving.start:
             close = stand(influence, nearest, way)
-            yield np.where(close.counts, close.effects, np.nan)
-            yield _apart(each[0], each[1], trains[0].length + moving.approach)
+            yield _found(close.effects, close.counts, close.place, close.place + apart, turned)
+            yield from _apart(each[0], each[1], apart, turned)
 
 
-def _apart(first: Standing, second: Standing, apart: float) -> Floats:
-    """The best pairs of places of two trains, the second at least so far ahead (E, T, C).
+def _found(effects: Floats, counts: Bools, left: Floats, right: Floats, turned: bool) -> _Found:
+    return _Found(
+        np.where(counts, effects, np.nan), np.stack([left, right]), np.full(left.shape, turned)
+    )
+
+
+def _apart(first: Standing, second: Standing, apart: float, turned: bool) -> Iterator[_Found]:
+    """The best pairs of places of two trains, the second at least so far ahead.
 
     For each extreme and each place of the first train the second stands where it adds most.
     """
@@ -200,15 +234,15 @@ def _apart(first: Standing, second: Standing, apart: float) -> Floats:
     counts = np.take_along_axis(second.counts, order, axis=1)
     adds = np.take_along_axis(second.effects, order[None], axis=2)
     nearest = _first_beyond(place, first.place + apart)
-    pairs = []
-    for effect in range(len(adds)):
+    room = (nearest < place.shape[1]) & first.counts
+    for effect in adds:
         for sign in (1.0, -1.0):
-            best = _best_from(np.where(counts, adds[effect] * sign, -np.inf))
+            best = _best_from(np.where(counts, effect * sign, -np.inf))
             at = np.take_along_axis(best, np.minimum(nearest, place.shape[1] - 1), axis=1)
-            chosen = np.take_along_axis(adds, at[None], axis=2)
-            held = np.take_along_axis(counts, at, axis=1) & (nearest < place.shape[1])
-            pairs.append(np.where(held & first.counts, first.effects + chosen, np.nan))
-    return np.concatenate(pairs, axis=-1)
+            together = first.effects + np.take_along_axis(adds, at[None], axis=2)
+            held = room & np.take_along_axis(counts, at, axis=1)
+            right = np.take_along_axis(place, at, axis=1)
+            yield _found(together, held, first.place, right, turned)
 
 
 def _first_beyond(places: Floats, aims: Floats) -> Ints:
@@ -232,14 +266,14 @@ def _best_from(values: Floats) -> Ints:
     return np.asarray(back.shape[1] - 1 - index[:, ::-1])
 
 
-def _extremes(found: Sequence[Floats]) -> Floats:
-    """Greatest and least of the first and of the last effect, with what goes with each (2, 4, T).
+def _extremes(every: _Found) -> _Found:
+    """Greatest and least of the first and of the last effect, with what goes with each.
 
     Of places that are alike the one with the greatest other effect counts.
     """
-    every = np.concatenate(found, axis=-1)
-    first, last = every[0], every[-1]
-    extremes = np.empty((2, ARRANGEMENTS, len(first)))
+    first, last = every.effects[0], every.effects[-1]
+    effects = np.empty((2, ARRANGEMENTS, len(first)))
+    places, turned = np.empty_like(effects), np.empty(effects.shape[1:], np.bool_)
     for arrangement in range(ARRANGEMENTS):
         own, other = (first, last) if arrangement < 2 else (last, first)
         sign = -1.0 if arrangement % 2 else 1.0
@@ -247,11 +281,12 @@ def _extremes(found: Sequence[Floats]) -> Floats:
         slack = _TIE * np.nanmax(np.abs(own), axis=1)
         alike = own * sign >= (best - slack)[:, None]
         at = np.where(alike, np.abs(other), -1.0).argmax(axis=1)
-        beside = np.take_along_axis(other, at[:, None], axis=1)[:, 0]
-        extremes[:, arrangement] = (
-            (best * sign, beside) if arrangement < 2 else (beside, best * sign)
-        )
-    return extremes
+        here = np.arange(len(at)), at
+        pair = [best * sign, other[here]]
+        effects[:, arrangement] = pair if arrangement < 2 else pair[::-1]
+        places[:, arrangement] = every.places[:, *here]
+        turned[arrangement] = every.turned[here]
+    return _Found(effects, places, turned)
 
 
 def _without_noise(extremes: Floats, beam: Ints) -> Floats:

@@ -7,12 +7,12 @@ case they turn elsewhere, between stations, and a little higher than at those.
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass, replace
+from dataclasses import dataclass
 from typing import TypeVar
 
 import numpy as np
 
-from ifccheck.analysis.effects import combine, demands
+from ifccheck.analysis.effects import combine, demands, scaled_case
 from ifccheck.analysis.statics import effects_at
 from ifccheck.analysis.stations import StationTable, rows_before
 from ifccheck.analysis.turns import Turns, turning_places
@@ -70,10 +70,8 @@ def _turns(factor: Floats, moving: Bools, growth: Growth) -> tuple[Ints, Floats]
     """Where the moments of the moving beams turn with the case multiplied, and may be critical."""
     cases, factors = growth.under.effects.cases, growth.under.factors
     multiple = np.where(moving, factor, 0.0)[cases.beam]
-    moment, shear = cases.moment.copy(), cases.shear.copy()
-    moment[growth.case] *= multiple
-    shear[growth.case] *= multiple
-    turns = turning_places(replace(cases, moment=moment, shear=shear), factors, alone=False)
+    grown = scaled_case(cases, growth.case, multiple)
+    turns = turning_places(grown, factors, alone=False)
     turns = turns.take(moving[turns.beam])
     return turns.take(_critical(turns, growth.found)).places()
 
