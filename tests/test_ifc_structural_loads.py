@@ -569,6 +569,15 @@ def test_what_is_no_force_is_a_doubt_of_the_beam(kind: str) -> None:
     assert "cannot be read" in doubts(model)
 
 
+def test_an_action_that_applies_nothing_is_counted() -> None:
+    hall = Hall()
+    member = hall.analysis.member((0, 0, 3000), (6000, 0, 3000))
+    hall.analysis.along(member, hall.analysis.linear(), hall.analysis.case("Live"))
+    model = hall.read()
+    assert case_of(model, "Live").notes == ("1 action: with no force and no moment",)
+    assert not model.loads.laid
+
+
 def test_a_factor_of_nothing_is_a_doubt() -> None:
     hall = Hall()
     member = hall.analysis.member((0, 0, 3000), (6000, 0, 3000))

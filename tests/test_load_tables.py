@@ -143,6 +143,17 @@ def test_a_wrong_row_is_told_with_file_row_and_column(
     assert "\n" not in str(caught.value)
 
 
+def test_other_wrong_rows_are_counted(tmp_path: Path) -> None:
+    wrong = [row(**{**LINE, "case": "x"}), row(**LINE), row(**{**LINE, "value": "1"})]
+    with pytest.raises(BriefError, match=r"^loads.csv row 2 case: .* \(and 2 more wrong rows\)$"):
+        entries(tmp_path, ",".join(HEADER), *wrong, row(**{**LINE, "beam": ""}))
+
+
+def test_a_decimal_comma_is_refused_where_the_heading_has_the_unit_too(tmp_path: Path) -> None:
+    with pytest.raises(BriefError, match=r"^loads.csv row 2 value: '3,2' has a comma"):
+        entries(tmp_path, "beam;case;kind;value [kN/m]", "B-1;floor;line;3,2")
+
+
 HEADINGS = [
     ("beam,case,kind,valu", "unknown column 'valu': did you mean value?"),
     ("beam,case,kind,value,", "column without name"),

@@ -57,11 +57,21 @@ def read_load_table(table: LoadTableFile, cases: Sequence[Case]) -> tuple[LoadEn
         )
     columns = _columns(table.name, rows[0][1])
     names = [column.name for column in columns]
-    return tuple(
-        _entry(f"{table.name} row {number}", _cells(columns, named(table.name, number, names, row)),
-               cases)
-        for number, row in rows[1:]
-    )  # fmt: skip
+    entries, faults = [], []
+    for number, row in rows[1:]:
+        try:
+            cells = _cells(columns, named(table.name, number, names, row))
+            entries.append(_entry(f"{table.name} row {number}", cells, cases))
+        except BriefError as fault:
+            faults.append(str(fault))
+    if faults:
+        more = len(faults) - 1
+        raise BriefError(faults[0] + (f" (and {more} more wrong {_rows(more)})" if more else ""))
+    return tuple(entries)
+
+
+def _rows(count: int) -> str:
+    return "row" if count == 1 else "rows"
 
 
 def _columns(file_name: str, header: Sequence[str]) -> list[_Column]:

@@ -24,6 +24,7 @@ SURFACE_ACTIONS = ("IfcStructuralSurfaceAction", "IfcStructuralPlanarAction")
 SURFACES = ("IfcStructuralSurfaceMember", "IfcStructuralSurfaceConnection")
 ON_SURFACE = "on a surface, not carried to beams"
 BY_NAME = "reached only through a group of the same name"
+NOTHING = "with no force and no moment"
 UNREAD = "on no beam in scope, and not read"
 TIE = "tie its member to the beam by IfcRelAssignsToProduct, or write loads_complete = true"
 LEAST_LOST = 1e-3
@@ -121,6 +122,8 @@ class _Reader:
         case = self._cases[source.case]
         times = abs(source.factor)
         case.total += times * size_of(applied)
+        if applied.acts_not:
+            case.notes[NOTHING] += 1
         reached = set()
         for piece in applied.pieces:
             for held in hosts.helds:

@@ -56,6 +56,12 @@ class Applied:
     spots: list[Spot] = field(default_factory=list)
     doubts: list[str] = field(default_factory=list)
 
+    @property
+    def acts_not(self) -> bool:
+        """It applies neither a force nor a moment."""
+        along = any(piece.forces.any() or piece.twisting for piece in self.pieces)
+        return not along and not any(s.force.any() or s.moment.any() for s in self.spots)
+
 
 def applied_along(
     action: Entity, line: Stretch, axes: Matrix, scale: float, units: LoadUnits
