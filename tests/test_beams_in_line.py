@@ -9,11 +9,11 @@ from functools import cache
 
 import pytest
 
-from ifccheck.beam import Beam, Model
+from ifccheck.beam import Bars, Beam, Model
 from ifccheck.frame.carrying import Stated
 from ifccheck.frame.column_springs import FarEnd, column_stiffness
 from ifccheck.frame.contacts import contacts_of_others, find_contacts
-from ifccheck.frame.ground_up import Joint
+from ifccheck.frame.joints import Meeting, by_bars
 from ifccheck.frame.lines import Lines, find_lines
 from tests.frames_of_beams import (
     SETTINGS,
@@ -166,11 +166,11 @@ class Stood:
         return self.lines.unknown[self.key(name)].text
 
 
-def always(one: Joint, other: Joint) -> bool:
+def always(meeting: Meeting) -> bool:
     return True
 
 
-def never(one: Joint, other: Joint) -> bool:
+def never(meeting: Meeting) -> bool:
     return False
 
 
@@ -293,18 +293,62 @@ def test_without_bars_that_run_through_every_part_stands_alone() -> None:
     )
 
 
-def test_each_joint_is_asked_for_with_its_own_ends() -> None:
+def test_each_beam_is_asked_whether_it_goes_on() -> None:
     model = read(face_to_face())
     names = {beam.key: beam.name for beam in model.beams}
-    asked = set()
+    asked = []
 
-    def ask(one: Joint, other: Joint) -> bool:
-        asked.add(((names[one[0]], one[1]), (names[other[0]], other[1])))
-        return True
+    def ask(meeting: Meeting) -> bool:
+        asked.append((names[meeting.beam], meeting.end, names[meeting.other], meeting.other_end))
+        assert meeting.far == pytest.approx(6000 if meeting.end == "end" else -400)
+        return False
 
     contacts = find_contacts(model.beams, model.members)
     find_lines(model, contacts, {}, {}, ask)
-    assert asked == {(("F1", "end"), ("F2", "start")), (("F2", "start"), ("F1", "end"))}
+    assert sorted(asked) == [("F1", "end", "F2", "start"), ("F2", "start", "F1", "end")]
+
+
+def bars(z: float, start: float, end: float) -> Bars:
+    return Bars(1, 25.2, 500.0, start, end, z, (0.0,))
+
+
+@pytest.mark.parametrize(
+    ("first", "second", "lines"),
+    [
+        (bars(540, 40, 6000), None, 1),
+        (bars(540, 40, 7500), None, 1),
+        (bars(540, 40, 5999), None, 2),
+        (bars(60, 40, 7500), None, 2),
+        (None, bars(540, -401, 3000), 1),
+        (None, bars(540, -399, 5000), 2),
+        (bars(540, 40, 5560), bars(540, 40, 5560), 2),
+        (None, None, 2),
+    ],
+)
+def test_moment_passes_where_top_bars_of_one_beam_reach_past_the_support(
+    first: Bars | None, second: Bars | None, lines: int
+) -> None:
+    """F1 ends at 5600 and F2 starts 400 beyond it, on the other face of the column."""
+    model = read(face_to_face())
+    by_name = {beam.name: beam for beam in model.beams}
+    placed = {
+        by_name[name].key: [bar] for name, bar in (("F1", first), ("F2", second)) if bar is not None
+    }
+    contacts = find_contacts(model.beams, model.members)
+    asks = by_bars({beam.key: beam for beam in model.beams}, placed)
+    assert len(find_lines(model, contacts, {}, {}, asks).lines) == lines
+
+
+def test_beams_that_cross_over_a_column_are_both_carried_by_it() -> None:
+    model = read([
+        lying("X1", (0, 0, 3000), (8000, 0, 3000)), column("1", 200, 0), column("2", 7800, 0),
+        lying("X2", (4000, -4000, 3000), (4000, 4000, 3000)), column("M", 4000, 0),
+        column("3", 4000, -3800), column("4", 4000, 3800),
+    ])  # fmt: skip
+    stood = stand(model)
+    assert not stood.lines.crossing
+    rows_near(stood.rows("X1")[1:2], [("between", 4000, 3800, 4200, "M", BELOW, True)])
+    assert [len(line) for line in stood.spans()] == [2, 2]
 
 
 def test_beams_off_the_line_do_not_go_on_into_each_other() -> None:
@@ -506,3 +550,49 @@ def test_a_mullion_beside_a_column_does_not_take_its_place() -> None:
     assert (first.carrier_name, first.x, first.others) == (
         "1 (IfcColumn)", pytest.approx(-200), ("M (IfcMember)",),
     )  # fmt: skip
+
+
+def test_a_beam_that_leans_on_one_of_unknown_supports_is_unknown_too() -> None:
+    """T3 hangs over from T2; a partition under T2 leaves open how that stands."""
+    wall = block("W", (9000, 10000), (100, 2000), (0, 3000), "IfcWall")
+    stood = stand(read([*three_over_three_columns(), wall]))
+    assert "W (IfcWall)" in stood.why("T2")
+    assert "it stands only as it goes on into T2 (IfcBeam)" in stood.why("T3")
+    (line,) = stood.spans()
+    rows_near(line, [("T1", 200, 6200, PIN, PIN)])
+    assert stood.told("T1")[-1].endswith(
+        "takes no moment from it: the other's supports are unknown"
+    )
+
+
+def test_what_hangs_over_may_carry_others() -> None:
+    """A beam rests on the tip of T3 and on a column; without bars over D3 nothing holds either."""
+    members = [
+        *three_over_three_columns(),
+        lying("Z", (13500, 9850, 3600), (13500, 14000, 3600)),
+        column("Y", 13500, 13800, (0.0, 3600.0)),
+    ]
+    model = read(members)
+    stood = stand(model)
+    assert [span[3:] for line in stood.spans() for span in line if span[0] == "Z"] == [(PIN, PIN)]
+    order = [stood.names[key] for key in stood.lines.order if key in stood.names]
+    assert order.index("T3") < order.index("Z")
+    loose = stand(model, through=False)
+    assert "T3 (IfcBeam): nothing shows that it is carried" in loose.why("Z")
+
+
+@pytest.mark.parametrize("shift", [-9.0, -4.0, 4.0, 9.0])
+def test_gaps_within_the_tolerance_change_no_line(shift: float) -> None:
+    """Columns drawn a little too high or too low, beams a little short or long."""
+    members = [
+        lying("A", (200 + shift, 0, 3000), (6000, 0, 3000)),
+        lying("B", (6000 + shift / 2, 0, 3000), (12000, 0, 3000)),
+        column("1", 0, 0, (0.0, 6000.0)),
+        column("2", 6000, 0, (0.0, 3000.0 + shift)),
+        column("3", 11800, 0, (0.0, 3000.0 + shift)),
+    ]
+    (line,) = stand(read(members)).spans()
+    assert [span[0] for span in line] == ["A", "B"]
+    assert [span[3:] for span in line] == [(PIN, ON), (ON, PIN)]
+    lengths = [span[2] - span[1] for span in line]
+    assert lengths == pytest.approx([6000, 5800], abs=abs(shift))

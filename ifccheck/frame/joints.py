@@ -2,16 +2,18 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator, Mapping, Sequence
+from collections.abc import Callable, Iterator, Mapping, Sequence
 from itertools import chain
 from typing import NamedTuple
 
 import numpy as np
 
-from ifccheck.frame.boxes import Bools, Floats, Ints
+from ifccheck.beam import Bars, Beam
+from ifccheck.frame.boxes import Bools, Floats, Ints, section_extent
+from ifccheck.frame.carrying import End
 from ifccheck.frame.contacts import TOLERANCE
 from ifccheck.frame.ground_up import Joint
-from ifccheck.frame.seats import LEVEL, Cluster
+from ifccheck.frame.seats import LEVEL, Candidate, Cluster
 from ifccheck.frame.spanning import Spanning
 
 OFF_LINE = 50.0
@@ -19,6 +21,21 @@ OFF_LINE = 50.0
 
 WIDEST_JOINT = 1500.0
 """Ends farther apart are two supports, however wide what stands between them [mm]."""
+
+
+class Meeting(NamedTuple):
+    """An end of a beam that meets that of another over the same support."""
+
+    beam: str
+    end: End
+    other: str
+    other_end: End
+    far: float
+    """The face of the support that is the farther one from the beam, in its own x [mm]"""
+
+
+RunsThrough = Callable[[Meeting], bool]
+"""Whether a beam passes moment on into the one that it meets, by its own bars or by the brief"""
 
 
 class _Ends(NamedTuple):
@@ -63,6 +80,57 @@ def meeting_ends(
         for one, (_, other) in best.items()
         if other in best and best[other][1] == one
     }
+
+
+def continuous_joints(
+    meeting: Mapping[Joint, Joint],
+    clusters: Mapping[str, Sequence[Cluster]],
+    runs_through: RunsThrough,
+) -> dict[Joint, Joint]:
+    """Those pairs of ends over which moment passes, by what either beam has there."""
+    passing = {
+        one for one, other in meeting.items() if runs_through(_meeting(one, other, clusters))
+    }
+    return {one: other for one, other in meeting.items() if one in passing or other in passing}
+
+
+def _meeting(one: Joint, other: Joint, clusters: Mapping[str, Sequence[Cluster]]) -> Meeting:
+    both = _candidates(one, clusters)
+    if len(both) > 1:
+        there = {each.contact.other_step for each in _candidates(other, clusters)}
+        both = [each for each in both if each.contact.other_step in there]
+    if one[1] == "end":
+        return Meeting(*one, *other, max([each.high for each in both]))
+    return Meeting(*one, *other, min([each.low for each in both]))
+
+
+def _candidates(joint: Joint, clusters: Mapping[str, Sequence[Cluster]]) -> Sequence[Candidate]:
+    key, end = joint
+    for cluster in clusters[key]:
+        if cluster.place == end:
+            return cluster.candidates
+    return ()
+
+
+def by_bars(beams: Mapping[str, Beam], bars: Mapping[str, Sequence[Bars]]) -> RunsThrough:
+    """Let moment pass where bars near the top of a beam reach past the support.
+
+    Parameters
+    ----------
+    beams
+        By key, each with runs.
+    bars
+        The bars that each beam is rated with, by its key.
+    """
+
+    def runs_through(meeting: Meeting) -> bool:
+        *_, low, high = section_extent(beams[meeting.beam])
+        top = [bar for bar in bars.get(meeting.beam, ()) if bar.z > (low + high) / 2.0]
+        if meeting.end == "end":
+            return any(bar.end >= meeting.far for bar in top)
+        return any(bar.start <= meeting.far for bar in top)
+
+    return runs_through
 
 
 def _ends(clusters: Mapping[str, Sequence[Cluster]], bodies: Mapping[str, Spanning]) -> _Ends:

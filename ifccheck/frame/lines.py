@@ -3,7 +3,7 @@ model shows them and the brief says."""
 
 from __future__ import annotations
 
-from collections.abc import Callable, Iterator, Mapping, Sequence, Set
+from collections.abc import Iterator, Mapping, Sequence, Set
 from graphlib import TopologicalSorter
 from itertools import pairwise
 from operator import attrgetter
@@ -15,7 +15,7 @@ from ifccheck.frame.beam_lines import BeamLine, EndKind, LineSpan, SpanEnd, chai
 from ifccheck.frame.carrying import ENDS, End, Stated, judged_contacts
 from ifccheck.frame.contacts import TOLERANCE
 from ifccheck.frame.ground_up import Joint, Order, order_of, told_against, without_free
-from ifccheck.frame.joints import meeting_ends
+from ifccheck.frame.joints import RunsThrough, continuous_joints, meeting_ends
 from ifccheck.frame.seats import (
     Cluster,
     Place,
@@ -27,10 +27,6 @@ from ifccheck.frame.seats import (
     seat_of,
 )
 from ifccheck.frame.spanning import Spanning, all_spanning
-
-RunsThrough = Callable[[Joint, Joint], bool]
-"""Whether moment passes from one end of a beam to that of another over their support: by bars
-that run through, or by the brief"""
 
 
 class Lines(NamedTuple):
@@ -82,7 +78,8 @@ def find_lines(
     stated
         What the brief's entries say of ends.
     runs_through
-        Whether moment passes from one end to another that meets it over their support.
+        Whether a beam passes moment on into another that it meets over their support: asked of
+        both, of which one is enough.
     load_bearing
         Step ids of walls and members that the model or the brief says carry what lies on them; of
         others under a beam, between its ends, nothing tells whether they do.
@@ -102,7 +99,7 @@ def find_lines(
     }
     keys = [beam.key for beam in model.beams if beam.axis is not None and beam.runs]
     meeting = meeting_ends({key: clusters[key] for key in keys}, bodies)
-    joints = {one: other for one, other in meeting.items() if runs_through(one, other)}
+    joints = continuous_joints(meeting, clusters, runs_through)
     order = order_of(clusters, stated, joints, corbels(judged, bodies))
     frame = _Frame(bodies, clusters, meeting, joints, stated, order)
     seats = {key: _seats(frame, key) for key in clusters}
@@ -246,7 +243,8 @@ def _remarks(frame: _Frame, seats: Sequence[Seat], spans: Sequence[LineSpan]) ->
         place = seat.place
         if place != "between" and end.seat is seat and (seat.beam, place) in frame.meeting:
             other = frame.bodies[frame.meeting[seat.beam, place][0]].told
-            yield told.meets(seat, other, goes_on=end.kind == "continuous")
+            passes = (seat.beam, place) in frame.joints
+            yield told.meets(seat, other, goes_on=end.kind == "continuous", passes=passes)
 
 
 def _carriers_first(seats: Mapping[str, Sequence[Seat]], order: Order) -> tuple[str, ...]:

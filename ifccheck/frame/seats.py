@@ -334,9 +334,21 @@ def crossings(judged: Mapping[str, Sequence[Judged]], bodies: Mapping[str, Spann
         carries = _carries(other, _middle(back), own, _middle(contact))
         if carries:
             deeper.setdefault(key, {})[other_step] = carrier
-        elif not _carries(own, _middle(contact), other, _middle(back)):
+        elif not (
+            _carries(own, _middle(contact), other, _middle(back)) or _stands(judged[key], contact)
+        ):
             level[key] = (*level.get(key, ()), contact)
     return Crossings(deeper, level)
+
+
+def _stands(judged: Sequence[Judged], crossing: Contact) -> bool:
+    """Whether a beam lies on what stands where another crosses it."""
+    return any(
+        contact.side == "below" and contact.bears and not contact.doubt and carrier is None
+        for contact, carrier in judged
+        if contact.start <= crossing.end and contact.end >= crossing.start
+        if kind_of(contact.other_class) not in _FILLING
+    )
 
 
 def _middle(contact: Contact) -> float:

@@ -36,15 +36,16 @@ def hangs_over(span: LineSpan) -> Remark:
     return _assumed(beam, f"it hangs over by {length}, to its tip at x = {_x(tip.x)}")
 
 
-def meets(seat: Seat, other: str, *, goes_on: bool) -> Remark:
-    """Whether a beam goes on into the one that it meets over a support."""
+def meets(seat: Seat, other: str, *, goes_on: bool, passes: bool) -> Remark:
+    """Whether a beam goes on into the one that it meets over a support.
+
+    ``passes``: moment would pass, if nothing but the supports of the other were unknown.
+    """
     where = f"over {seat.carrier_name} at x = {_x(seat.x)}"
     if goes_on:
         return _assumed(seat.beam, f"goes on into {other} {where} with all moment")
-    return _assumed(
-        seat.beam,
-        f"meets {other} {where}, and takes no moment from it: nothing shows bars that run through",
-    )
+    why = "the other's supports are unknown" if passes else "nothing shows bars that run through"
+    return _assumed(seat.beam, f"meets {other} {where}, and takes no moment from it: {why}")
 
 
 def lies_along(contact: Contact) -> str:
