@@ -132,27 +132,54 @@ def test_a_varying_load_over_a_part(schema: str, unit: str, force: str) -> None:
     assert laid.values == pytest.approx((9.0, 4.0))
 
 
-def test_a_varying_linear_action_of_ifc2x3() -> None:
-    hall = Hall("IFC2X3", "METRE", "kN")
+def varying_action(hall: Hall, places: tuple[float, ...], values: tuple[float, ...]) -> None:
+    """An action of IFC2X3 with a load at each of some places."""
     analysis = hall.analysis
     member = analysis.member((0.0, 0.0, 3000.0), (6000.0, 0.0, 3000.0))
-    points = [analysis.make("IfcVertexPoint", analysis.point(x, 0.0, 3000.0))
-              for x in (0.0, 3000.0, 6000.0)]  # fmt: skip
+    points = [analysis.make("IfcVertexPoint", analysis.point(x, 0, 3000)) for x in places]
     shape = analysis.make("IfcTopologyRepresentation", analysis.context, "Loads", "Vertex", points)
     aspect = analysis.make("IfcShapeAspect", [shape], None, None, False, member.Representation)
+    first, *others = (analysis.linear(z=-value) for value in values)
     action = analysis.root(
-        "IfcStructuralLinearActionVarying", Name="Heap", AppliedLoad=analysis.linear(z=-1.0),
+        "IfcStructuralLinearActionVarying", Name="Heap", AppliedLoad=first,
         GlobalOrLocal="GLOBAL_COORDS", DestabilizingLoad=False, ProjectedOrTrue="TRUE_LENGTH",
-        VaryingAppliedLoadLocation=aspect,
-        SubsequentAppliedLoads=[analysis.linear(z=-5.0), analysis.linear(z=-2.0)],
+        VaryingAppliedLoadLocation=aspect, SubsequentAppliedLoads=others,
     )  # fmt: skip
     analysis.root(
         "IfcRelConnectsStructuralActivity", RelatingElement=member, RelatedStructuralActivity=action
     )
     analysis.group(analysis.case("Live"), action)
+
+
+def test_a_varying_linear_action_of_ifc2x3() -> None:
+    hall = Hall("IFC2X3", "METRE", "kN")
+    varying_action(hall, (0.0, 3000.0, 6000.0), (1.0, 5.0, 2.0))
     first, second = hall.read().loads.laid
     assert (first.start, first.end, second.end) == pytest.approx((0.0, 3000.0, 6000.0))
     assert (*first.values, *second.values) == pytest.approx((1.0, 5.0, 5.0, 2.0))
+
+
+@pytest.mark.parametrize("places", [(0.0, 6000.0), (6000.0, 3000.0, 0.0), (0.0, 3000.0, 9000.0)])
+def test_varying_places_that_make_no_sense_drop_no_load(places: tuple[float, ...]) -> None:
+    hall = Hall("IFC2X3", "METRE", "kN")
+    varying_action(hall, places, (1.0, 5.0, 2.0))
+    model = hall.read()
+    assert not model.loads.laid
+    assert "cannot be read" in doubts(model)
+
+
+def test_short_members_count_on_the_beam_that_they_lie_in_alone() -> None:
+    """Sixty members of 100 mm along the first of two beams that meet."""
+    hall = Hall("IFC4", "METRE", beams=2)
+    analysis, case = hall.analysis, hall.analysis.case("Live")
+    for n in range(60):
+        member = analysis.member((100.0 * n, 0, 3000), (100.0 * (n + 1), 0, 3000), name=f"M-{n}")
+        analysis.along(member, analysis.linear(**DOWN), case)
+    model = hall.read()
+    assert {one.beam for one in model.loads.laid} == {model.beams[0].key}
+    forces = [one.values[0] * (one.end - one.start) for one in model.loads.laid]
+    assert sum(forces) == pytest.approx(60e3)
+    assert not case_of(model, "Live").lost
 
 
 @pytest.mark.parametrize("kind", ["POLYGONAL", "EQUIDISTANT"])

@@ -90,8 +90,7 @@ def applied_varying(
 ) -> Applied:
     """Return what a varying linear action (IFC2X3) applies, given the places of its values."""
     values = [need(action, "AppliedLoad"), *several(action, "SubsequentAppliedLoads")]
-    if len(values) != len(places):
-        raise UnreadableError(f"{label(action)} has {len(values)} loads at {len(places)} places")
+    _require_order(action, places, len(values), line.length)
     return _pieces(action, values, places, axes * _shares(action, axes, line), units)
 
 

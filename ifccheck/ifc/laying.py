@@ -18,6 +18,8 @@ NEAR = 1000.0
 """Distance [mm] within which a member that stands for no beam may be meant to stand for one"""
 TOLERANCE = 50.0
 """Distance [mm] by which a member may lie outside of the body of the beam that it stands for"""
+LEAST_PART = 0.6
+"""Part of a short line that must lie over a beam: one that only begins at its end does not"""
 PARALLEL = np.cos(np.radians(2.0))
 NO_PART = 1e-3
 """Part of a load below which what does not act downward is noise"""
@@ -102,7 +104,7 @@ def coincides(box: BeamBox, line: Stretch) -> Held | None:
     if held is None:
         return None
     start, end = held.covered(line)
-    if end - start <= 3.0 * TOLERANCE:
+    if end - start <= min(LEAST_PART * line.length, 3.0 * TOLERANCE):
         return None
     ends = np.array([line.start + s * line.along for s in (start, end)])
     return held if box.holds(box.inside(ends)) else None
@@ -112,7 +114,7 @@ def off(held: Held, line: Stretch) -> float:
     """Distance [mm] of a line from the body of the beam that it runs along; inf where it lies
     beyond its ends."""
     start, end = held.covered(line)
-    if end - start <= 3.0 * TOLERANCE:
+    if end - start <= min(LEAST_PART * line.length, 3.0 * TOLERANCE):
         return float("inf")
     ends = held.box.inside(np.array([line.start + s * line.along for s in (start, end)]))
     return held.box.off(ends[:, 1:])
