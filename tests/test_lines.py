@@ -456,6 +456,17 @@ def test_a_spring_below_nothing_is_refused() -> None:
         continuous(
             solve(spans, loads, 1), replace(table, rotational_spring=np.array([0.0, -1.0, 0.0]))
         )
+    with pytest.raises(ValueError, match="spring below 0"):
+        continuous(
+            solve(spans, loads, 1), replace(table, vertical_spring=np.array([np.inf, np.nan, 1.0]))
+        )
+
+
+@pytest.mark.parametrize("stiffness", [0.0, -1.0, np.nan, np.inf])
+def test_a_span_without_stiffness_is_refused(stiffness: float) -> None:
+    spans, loads, table = tables([uniform(2)])
+    with pytest.raises(ValueError, match="no stiffness"):
+        continuous(solve(spans, loads, 1), replace(table, stiffness=np.array([1.0, stiffness])))
 
 
 def test_supports_that_sink_need_an_end_that_minds() -> None:

@@ -380,6 +380,20 @@ def test_moving_cases_of_two_lines_do_not_mix() -> None:
     assert not reactions.greatest[1, :3].any()
 
 
+def test_a_line_without_stations_asks_for_nothing() -> None:
+    first, second = (small_line(np.random.default_rng(2), 2) for _ in range(2))
+    spans, _, lines = tables([first, second])
+    case = MovingCase(0, 0, (train((0.0, 2e3)),), 0.0, sum(first.lengths))
+    for rows in ([3, 3], []):
+        beam = np.array(rows, np.intp)
+        stations = StationTable(beam, spans.start[beam] + 100.0, 0 * beam)
+        found = moving_effects(spans, lines, [case], stations)
+        assert found is not None
+        assert found.moment.shape == (4, 1, len(rows))
+        assert not found.moment.any()
+        assert np.isnan(found.places).all()
+
+
 def test_the_place_of_a_wheel_at_a_station_is_seen_from_both_sides() -> None:
     """One wheel on a span of 4 m, at its quarter: 3/4 of it to the left, 1/4 to the right."""
     spans, lines = single(4000.0)

@@ -106,8 +106,10 @@ def require_lines(spans: SpanTable, lines: LineTable) -> None:
         raise ValueError(f"span of row {row} does not go on at a support within its line")
     _require_rest(spans, lines)
     vertical, turning = springs_of(spans, lines)
-    if np.isnan(vertical).any() or np.isnan(turning).any() or min(*vertical, *turning, 0.0) < 0.0:
+    if not ((vertical >= 0.0).all() and (turning >= 0.0).all()):
         raise ValueError("a support of a line has a spring below 0")
+    if not (np.isfinite(lines.stiffness) & (lines.stiffness > 0.0)).all():
+        raise ValueError("a span of a line has no stiffness")
     if not len(lines.line):
         return
     held = np.add.reduceat((vertical > 0.0).astype(np.intp), lines.first_nodes)

@@ -104,8 +104,10 @@ def moving_effects(
     effects, places = np.zeros((2, *shape)), np.full((2, *shape), np.nan)
     turned = np.zeros(shape, np.bool_)
     for each in moving:
+        rows = np.flatnonzero(np.isin(stations.beam, lines.span[lines.line == each.line]))
+        if not rows.size:
+            continue
         line = line_influence(spans, lines, each.line, curvature)
-        rows = np.flatnonzero(np.isin(stations.beam, line.rows))
         here = StationTable(stations.beam[rows], stations.x[rows], stations.side[rows])
         found = _envelope(of_stations(line, here), each)
         row = int(np.searchsorted(case, each.case))
