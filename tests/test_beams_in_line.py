@@ -29,6 +29,7 @@ from tests.frames_of_beams import (
     read,
     three_over_three_columns,
 )
+from tests.ifc_models import Building
 
 Row = tuple[str, float, float, float, str, str, bool]
 """Place, centre, faces, carrier, way, direct"""
@@ -86,8 +87,8 @@ SEATS: Mapping[str, Sequence[Row]] = {
         ("end", 8850, 8700, 9000, "PAD", BELOW, True),
     ],
     "CORB": [
-        ("start", 95, -30, 220, "N1", BELOW, True),
-        ("end", 5445, 5320, 5570, "N2", BELOW, True),
+        ("start", -15, -30, 0, "N1", BELOW, True),
+        ("end", 5555, 5540, 5570, "N2", BELOW, True),
     ],
     "AIR": [],
     "ODD": [("start", 200, 0, 400, "Q3", BELOW, True)],
@@ -123,7 +124,7 @@ LINES: Sequence[Sequence[Span]] = [
     [("K2", 0, 2000, FIX, FREE)],
     [("ON", 125, 5125, PIN, PIN)],
     [("P", 300, 4500, PIN, ON), ("P", 4500, 8850, ON, PIN)],
-    [("CORB", 95, 5445, PIN, PIN)],
+    [("CORB", -15, 5555, PIN, PIN)],
     [("X2", 200, 7800, PIN, PIN)],
     [("THIN", 200, 4000, PIN, ON), ("THIN", 4000, 7800, ON, PIN)],
 ]  # fmt: skip
@@ -596,3 +597,62 @@ def test_gaps_within_the_tolerance_change_no_line(shift: float) -> None:
     assert [span[3:] for span in line] == [(PIN, ON), (ON, PIN)]
     lengths = [span[2] - span[1] for span in line]
     assert lengths == pytest.approx([6000, 5800], abs=abs(shift))
+
+
+def test_what_stands_askew_is_measured_on_the_axis() -> None:
+    """Square columns of 400 at 45 degrees: 400 sqrt(2) / 2 on either side along the axis through
+    their middle. A girder 300 wide at 60 degrees: 150 / sin 60 on either side of its middle."""
+    c, turn = math.sqrt(0.5), math.radians(60.0)
+    model = read([
+        lying("A", (0, 0, 3000), (8000, 0, 3000)),
+        column("1", 0, 0), column("2", 4000, 0),
+        lying("G", (8000 - 3000 * math.cos(turn), -3000 * math.sin(turn), 2400),
+              (8000 + 3000 * math.cos(turn), 3000 * math.sin(turn), 2400)),
+        column("3", 8000 - 2900 * math.cos(turn), -2900 * math.sin(turn), (0.0, 2400.0)),
+        column("4", 8000 + 2900 * math.cos(turn), 2900 * math.sin(turn), (0.0, 2400.0)),
+    ])  # fmt: skip
+    axes = ((c, c, 0.0), (-c, c, 0.0), (0.0, 0.0, 1.0))
+    turned = tuple(
+        replace(m, box=replace(m.box, axes=axes)) if m.name in ("1", "2") else m
+        for m in model.members
+    )
+    reach, girder = 200 * math.sqrt(2), 150 / math.sin(turn)
+    seats = stand(replace(model, members=turned)).rows("A")
+    assert [row[2:4] for row in seats] == [
+        pytest.approx((-reach, reach), abs=0.01),
+        pytest.approx((4000 - reach, 4000 + reach), abs=0.01),
+        pytest.approx((8000 - girder, 8000 + girder), abs=0.01),
+    ]
+
+
+def test_on_a_ledge_a_beam_bears_no_farther_in_than_its_end() -> None:
+    """The box of an L does not tell where in it a beam that reaches into it bears."""
+
+    def ell(building: Building, setting: Setting) -> None:
+        shape = building.outline((-300, 0), (300, 0), (300, 700), (0, 700), (0, 300), (-300, 300))
+        solid = building.extrusion(shape, 6000)
+        place = building.placement((0, -3000, 2400), (0, 1, 0), (-1, 0, 0))
+        building.beam(solid, placement=place, Name="L")
+
+    members = [
+        lying("A", (50, 0, 2700), (6000, 0, 2700), 400), column("far", 5800, 0, (0.0, 2700.0)),
+        ell, column("a", 0, -2800, (0.0, 2400.0)), column("b", 0, 2800, (0.0, 2400.0)),
+    ]  # fmt: skip
+    stood = stand(read(members))
+    first = stood.rows("A")[0]
+    assert first[4] == "L"
+    assert first[3] == pytest.approx(0.0)
+    assert first[1] <= 0.0
+
+
+def test_a_pad_on_a_column_bears_no_farther_in_than_the_pad() -> None:
+    """The column's nib is drawn up behind the beam's end: its box goes past the pad."""
+    members = [
+        lying("A", (0, 0, 3000), (6000, 0, 3000)),
+        column("1", 200, 0, (0.0, 3400.0)), column("2", 5800, 0, (0.0, 3400.0)),
+        block("P", (75, 0), (150, 300), (2980, 3000), "IfcFooting"),
+        block("Q", (5900, 0), (100, 300), (2980, 3000), "IfcFooting"),
+    ]  # fmt: skip
+    rows = stand(read(members)).rows("A")
+    assert [row[4] for row in rows] == ["1", "2"]
+    assert (rows[0][3], rows[1][2]) == pytest.approx((150, 5850))

@@ -23,10 +23,10 @@ from ifccheck.frame.seats import (
     clusters_of,
     corbels,
     crossings,
-    levels_of_uprights,
     seat_of,
 )
 from ifccheck.frame.spanning import Spanning, all_spanning
+from ifccheck.frame.stretches import carriers_of
 
 
 class Lines(NamedTuple):
@@ -88,11 +88,11 @@ def find_lines(
     judged = judged_contacts(everything, model.beams, model.out_of_scope)
     members = {member.step_id: member for member in model.members}
     bodies = all_spanning(model.beams, members, others)
-    uprights = levels_of_uprights(model.members)
+    carriers = carriers_of(model.members, judged, model.beams)
     crossed = crossings(judged, bodies)
     clusters = {
         key: without_free(
-            clusters_of(body, judged[key], uprights, crossed.deeper.get(key, {}), load_bearing),
+            clusters_of(body, judged[key], carriers, crossed.deeper.get(key, {}), load_bearing),
             stated.get(key, {}),
         )
         for key, body in bodies.items()

@@ -11,11 +11,11 @@ from collections.abc import Iterable, Mapping, Sequence, Set
 from operator import attrgetter
 from typing import Literal, NamedTuple
 
-from ifccheck.beam import Contact, Member
+from ifccheck.beam import Contact
 from ifccheck.frame.carrying import DIRECT_CLASSES, End, Judged
 from ifccheck.frame.contacts import TOLERANCE, kind_of
 from ifccheck.frame.spanning import Spanning
-from ifccheck.frame.webs import levels_of
+from ifccheck.frame.stretches import HOLDS_MOMENT, Carriers, stretch_of
 
 Place = Literal["start", "end", "between"]
 Way = Literal["below", "end", "through"]
@@ -38,7 +38,6 @@ CORBEL = 1000.0
 
 MAY_FILL = "it may only fill the space under the beam"
 
-_HOLDS_MOMENT = ("IfcColumn", "IfcWall")
 _FILLING = ("IfcWall", "IfcMember")
 """What may end under a beam's soffit and carry nothing: partitions, mullions, braces"""
 _BEAMS = ("IfcBeam", "IfcMember")
@@ -114,19 +113,10 @@ class Cluster(NamedTuple):
     """Whether it reaches from end to end of the beam"""
 
 
-def levels_of_uprights(members: Iterable[Member]) -> dict[int, tuple[float, float]]:
-    """Least and greatest height of columns and walls [mm], by step id."""
-    return {
-        member.step_id: levels_of(member.box)
-        for member in members
-        if kind_of(member.ifc_class) in _HOLDS_MOMENT
-    }
-
-
 def clusters_of(
     body: Spanning,
     judged: Sequence[Judged],
-    uprights: Mapping[int, tuple[float, float]],
+    carriers: Carriers,
     deeper: Mapping[int, str],
     load_bearing: Set[int] = frozenset(),
 ) -> list[Cluster]:
@@ -138,8 +128,8 @@ def clusters_of(
         The beam.
     judged
         Its contacts, in their order along it.
-    uprights
-        Least and greatest height of columns and walls [mm], by step id.
+    carriers
+        What is known of the bodies of all members.
     deeper
         Keys of the beams that cross through it and carry it, by step id.
     load_bearing
@@ -154,7 +144,7 @@ def clusters_of(
             continue
         if (way := _way(contact, deeper)) is None:
             continue
-        candidate = _candidate(body, contact, carrier, way, uprights)
+        candidate = _candidate(body, contact, carrier, way, carriers)
         if contact.other_step in filling:
             fillers[contact.other_step] = candidate
         elif clusters and candidate.low <= reach + TOLERANCE:
@@ -219,36 +209,37 @@ def _together(candidates: Sequence[Candidate]) -> Cluster:
         for each in sorted(best.values(), key=_rank)
     ]
     sure = [each for each in chosen if not each.contact.doubt]
+    place: Place = "start" if "start" in places else "end" if "end" in places else "between"
     return Cluster(
-        place="start" if "start" in places else "end" if "end" in places else "between",
-        candidates=tuple(chosen),
+        place=place,
+        candidates=(_least_far_in(place, chosen[0], sure), *chosen[1:]),
         stands=any(each.carrier is None for each in sure),
         carriers=tuple([each.carrier for each in sure if each.carrier is not None]),
         whole={"start", "end"} <= places,
     )
 
 
+def _least_far_in(place: Place, first: Candidate, sure: Sequence[Candidate]) -> Candidate:
+    """What carries an end, bearing no farther in than any other that stands under it: a pad on a
+    column's head may be all that touches."""
+    under = [each for each in sure if each.way == "below" and each.carrier is None]
+    if first not in under or place == "between":
+        return first
+    if place == "start":
+        return first._replace(high=min([each.high for each in under if each.high > first.low]))
+    return first._replace(low=max([each.low for each in under if each.low < first.high]))
+
+
 _rank = attrgetter("rank")
 
 
 def _candidate(
-    body: Spanning,
-    contact: Contact,
-    carrier: str | None,
-    way: Way,
-    uprights: Mapping[int, tuple[float, float]],
+    body: Spanning, contact: Contact, carrier: str | None, way: Way, carriers: Carriers
 ) -> Candidate:
-    low, high, place = contact.start, contact.end, contact.place
-    if place == "between":
-        return Candidate(contact, carrier, way, low, high, built_in=False)
-    if place == "start":
-        low -= contact.beyond
-    else:
-        high += contact.beyond
-    levels = uprights.get(contact.other_step)
-    return Candidate(
-        contact, carrier, way, low, high, levels is not None and _covers(body, place, *levels)
-    )
+    low, high = stretch_of(body, contact, carriers)
+    place, levels = contact.place, carriers.uprights.get(contact.other_step)
+    built_in = levels is not None and place != "between" and _covers(body, place, *levels)
+    return Candidate(contact, carrier, way, low, high, built_in)
 
 
 def _way(contact: Contact, deeper: Mapping[int, str]) -> Way | None:
@@ -276,7 +267,7 @@ def corbels(judged: Mapping[str, Sequence[Judged]], bodies: Mapping[str, Spannin
 
 def _fastens(contact: Contact) -> bool:
     beside = contact.side in ("side", "end") and contact.bears and not contact.doubt
-    return beside and kind_of(contact.other_class) in _HOLDS_MOMENT
+    return beside and kind_of(contact.other_class) in HOLDS_MOMENT
 
 
 def seat_of(body: Spanning, cluster: Cluster, first: Candidate, doubt: str = "") -> Seat:
