@@ -35,7 +35,7 @@ from ifccheck.slabs import Flange as Flange
 from ifccheck.slabs import FlangeWidth as FlangeWidth
 from ifccheck.slabs import Slab as Slab
 from ifccheck.standing import Contact as Contact
-from ifccheck.standing import Line as Line
+from ifccheck.standing import RatedSpan as RatedSpan
 from ifccheck.standing import Span as Span
 from ifccheck.standing import Support as Support
 from ifccheck.standing import SupportKind as SupportKind
@@ -380,3 +380,6 @@ class Load(NamedTuple):
     origin: str = ""
     text: str = ""
     """What the brief says, for people: "60 kN at 2.1 m"."""
+    apart: bool = False
+    """Acts where the others of its case on that span do not: what rests on a beam presses on it or
+    lifts it"""

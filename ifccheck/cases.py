@@ -23,6 +23,13 @@ class Case:
     rated: bool = False
     excludes: tuple[str, ...] = ()
     removable: bool = False
+    whole: bool = False
+    """Acts on all spans of a line or on none: a fixed thing, not what may stand on some of them"""
+
+    @property
+    def by_spans(self) -> bool:
+        """Whether it may act on each span of a line and not on the next."""
+        return self.nature != "permanent" and not self.whole
 
 
 @dataclass(frozen=True, slots=True)

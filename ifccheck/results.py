@@ -63,7 +63,7 @@ def report_of(
         model=model,
         ratings=ratings,
         sheet=_sheets(model, batches, ratings, cases),
-        lines=tuple(subject.line for subject in gathered.subjects),
+        spans={subject.beam.key: subject.spans for subject in gathered.subjects},
         cases=tuple(_case(case, gathered, ratings) for case in cases if case.rated),
         combinations=tuple(combinations),
         remarks=tuple(remarks),

@@ -23,7 +23,7 @@ from ifccheck.beam import (
     Load,
     Nature,
     Outline,
-    Span,
+    RatedSpan,
     Stirrups,
 )
 from ifccheck.rating.batch import Batch
@@ -71,12 +71,11 @@ class CaseShare:
 
 @dataclass(frozen=True, slots=True)
 class CaseReaction:
-    """What one case, unfactored, asks of the two supports."""
+    """What one case, unfactored, asks of the supports."""
 
     case: str
-    start: float
-    """Upward force on the beam [N]"""
-    end: float
+    forces: tuple[float, ...]
+    """Upward, on the beam, of each support from its start to its end [N]"""
     start_moment: float
     """Moment of the beam just inside [N*mm], sagging positive; 0 where it is pinned"""
     end_moment: float
@@ -122,7 +121,8 @@ class Sheet:
 
     beam: Beam
     rating: Rating
-    span: Span | None
+    spans: tuple[RatedSpan, ...]
+    """Empty where nobody can say how it stands"""
     loads: tuple[Load, ...]
     """With self weight"""
     bars: tuple[Bars, ...]
@@ -137,8 +137,6 @@ class Sheet:
     bar_yield: tuple[Given, ...] = ()
     """The yield strength that each entry of ``bars`` was rated with, where it was rated"""
     stirrup_yield: tuple[Given, ...] = ()
-    faces: tuple[float, float] | None = None
-    """x of the faces of its supports [mm]"""
 
 
 @dataclass(frozen=True, slots=True)
@@ -263,8 +261,7 @@ def sheet_maker(
         return Sheet(
             beam=subject.beam,
             rating=rating,
-            span=subject.span,
-            faces=subject.faces,
+            spans=subject.spans,
             loads=(*_self_weight(arisen, subject, row), *subject.loads),
             bars=subject.bars,
             stirrups=subject.stirrups,
@@ -283,7 +280,7 @@ def sheet_maker(
 def bare_sheet(beam: Beam, rating: Rating) -> Sheet:
     """Make the sheet of a beam of which nothing could be worked out."""
     section = beam.runs[0].outline if beam.runs else None
-    return Sheet(beam, rating, None, (), (), (), section, 0.0, (), ())
+    return Sheet(beam, rating, (), (), (), (), section, 0.0, (), ())
 
 
 def _acting(arisen: Arising, subject: Subject) -> Iterator[tuple[int, Case]]:
@@ -305,19 +302,31 @@ def _case_shares(
 
 
 def _reactions(arisen: Arising, subject: Subject, row: int) -> tuple[CaseReaction, ...]:
+    spans = np.flatnonzero(arisen.beam_of == row)
     return tuple(
         CaseReaction(
-            case.name, *arisen.reactions[k, row].tolist(), *arisen.end_moments[k, row].tolist()
+            case.name,
+            tuple(_at_supports(arisen.reactions[k, spans])),
+            float(arisen.end_moments[k, spans[0], 0]),
+            float(arisen.end_moments[k, spans[-1], 1]),
         )
         for k, case in _acting(arisen, subject)
     )
+
+
+def _at_supports(of_spans: Floats) -> list[float]:
+    """The forces of the supports, of which an inner one serves two spans (S, 2)."""
+    forces = np.zeros(len(of_spans) + 1)
+    forces[:-1] += of_spans[:, 0]
+    forces[1:] += of_spans[:, 1]
+    return forces.tolist()
 
 
 def _self_weight(arisen: Arising, subject: Subject, row: int) -> Iterator[Load]:
     """The weight of each stretch of one section, as the analysis took it."""
     table = arisen.self_weight
     weight = show(subject.unit_weight.value, "unit_weight").replace(".0 ", " ")
-    for i in np.flatnonzero(table.beam == row).tolist():
+    for i in np.flatnonzero(arisen.beam_of[table.beam] == row).tolist():
         values = float(table.value_start[i]), float(table.value_end[i])
         both = dict.fromkeys(show(value, "line_load") for value in values)
         text = f"{' to '.join(both)} (self weight, {weight})"
@@ -353,7 +362,7 @@ def _outcome(found: LimitStateRating) -> str:
 
 def _section_x(batch: Batch, row: int, rating: Rating) -> float:
     place = rating.governing.position if rating.governing else math.nan
-    span = batch.subjects[row].span
+    span = batch.subjects[row].spans[0].span
     return place if math.isfinite(place) else (span.start + span.end) / 2.0
 
 

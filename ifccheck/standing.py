@@ -18,7 +18,7 @@ class Support(NamedTuple):
 
 
 class Span(NamedTuple):
-    """A span of a line between two supports; places along x of the line [mm]."""
+    """A span between two supports, or from one to a free end; places along x of the beam [mm]."""
 
     start: float
     end: float
@@ -26,11 +26,20 @@ class Span(NamedTuple):
     end_support: Support
 
 
-class Line(NamedTuple):
-    """Beams that act as one member, and its spans."""
+class RatedSpan(NamedTuple):
+    """A span with what its rating asks of the supports."""
 
-    beams: tuple[str, ...]
-    spans: tuple[Span, ...]
+    span: Span
+    faces: tuple[float, float]
+    """x of the faces of its two supports, within the beam [mm]; a free end is its own face"""
+    direct: tuple[bool, bool]
+    """Whether the reaction compresses its start and its end: a bearing from below or a column,
+    not the side of another beam"""
+
+    @property
+    def length(self) -> float:
+        """From support to support, or to the tip [mm]."""
+        return self.span.end - self.span.start
 
 
 class Contact(NamedTuple):

@@ -11,7 +11,7 @@ import math
 from collections.abc import Iterable, Iterator, Mapping, Sequence
 from typing import TYPE_CHECKING
 
-from ifccheck.beam import Beam, Model, Outline, OutOfScope, Span, Verdict
+from ifccheck.beam import Beam, Model, Outline, OutOfScope, RatedSpan, Verdict
 from ifccheck.findings import Survey
 from ifccheck.rating import LimitStateRating, Rating, SafeLoad
 
@@ -29,7 +29,7 @@ _NO_LOAD = SafeLoad("", math.nan, "", math.nan, "", "", "", math.nan, "")
 def ratings_frame(
     beams: Sequence[Beam],
     ratings: Mapping[str, Rating],
-    spans: Mapping[str, Span] | None = None,
+    spans: Mapping[str, tuple[RatedSpan, ...]] | None = None,
     cases: Sequence[str] = (),
 ) -> pd.DataFrame:
     """Return one row per beam: the beam, its verdict, what governs, and every rated case.
@@ -44,7 +44,7 @@ def ratings_frame(
 def ratings_columns(
     beams: Sequence[Beam],
     ratings: Mapping[str, Rating],
-    spans: Mapping[str, Span],
+    spans: Mapping[str, tuple[RatedSpan, ...]],
     cases: Sequence[str],
 ) -> dict[str, list[Cell]]:
     """Return the columns of ``ratings_frame``, for what needs no table; none without beams."""
@@ -54,7 +54,7 @@ def ratings_columns(
     states = _names(state.name for r in ratings.values() for state in r.limit_states)
     named = _names((*cases, *(safe.case for r in ratings.values() for safe in r.safe_loads)))
     return {
-        **_columns(_BEAM, (_beam_cells(beam, spans.get(beam.key)) for beam in beams)),
+        **_columns(_BEAM, (_beam_cells(beam, spans.get(beam.key, ())) for beam in beams)),
         **_columns(_RATING, map(_rating_cells, own)),
         **_columns([f"utilisation_{name}" for name in states], _state_cells(own, states)),
         **_columns([f"{c}_{name}" for c in named for name in _CASE], _case_cells(own, named)),
@@ -66,7 +66,8 @@ def _columns(names: Sequence[str], rows: Iterable[Sequence[Cell]]) -> dict[str, 
 
 
 def run_frame(
-    models: Iterable[tuple[Model, Mapping[str, Rating], Mapping[str, Span]]], cases: Sequence[str]
+    models: Iterable[tuple[Model, Mapping[str, Rating], Mapping[str, tuple[RatedSpan, ...]]]],
+    cases: Sequence[str],
 ) -> pd.DataFrame:
     """Return the ratings of several models as one table, with the name of each beam's model."""
     import pandas as pd
@@ -203,7 +204,7 @@ _BEAM = (
 )  # fmt: skip
 
 
-def _beam_cells(beam: Beam, span: Span | None) -> tuple[Cell, ...]:
+def _beam_cells(beam: Beam, spans: Sequence[RatedSpan]) -> tuple[Cell, ...]:
     strength = beam.concrete_strength
     return (
         beam.model,
@@ -218,7 +219,7 @@ def _beam_cells(beam: Beam, span: Span | None) -> tuple[Cell, ...]:
         beam.material,
         strength.value if strength else math.nan,
         _metres(beam.length) if beam.axis else math.nan,
-        _metres(span.end - span.start) if span else math.nan,
+        _metres(max(each.length for each in spans)) if spans else math.nan,
     )
 
 

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 from dataclasses import replace
+from typing import Any
 
 from ifccheck.analysis.combinations import expand_exclusions
 from ifccheck.beam import (
@@ -14,9 +15,9 @@ from ifccheck.beam import (
     Case,
     Combination,
     Given,
-    Line,
     Load,
     Outline,
+    RatedSpan,
     Run,
     Span,
     Stirrups,
@@ -78,8 +79,13 @@ def subject(
     )
     return Subject(
         beam=beam,
-        line=Line((key,), (Span(bearing / 2.0, length - bearing / 2.0, *supports),)),
-        faces=(bearing, length - bearing), span_source="test", direct=(True, True),
+        spans=(
+            RatedSpan(
+                Span(bearing / 2.0, length - bearing / 2.0, *supports),
+                faces=(bearing, length - bearing), direct=(True, True),
+            ),
+        ),
+        span_source="test",
         bars=bars, stirrups=stirrups,
         stirrups_known=True, silent=(), side_loaded=False, statements=(),
         reinforcement_source="bars", loads=tuple(loads),
@@ -111,6 +117,12 @@ def rated(
 ) -> tuple[Batch, list[Rating]]:
     batch = rate_batch(subjects, STANDARD, Options(method), cases, combinations(cases))
     return batch, ratings_of(batch, STANDARD, cases)
+
+
+def held(beam: Subject, **changes: Any) -> Subject:
+    """The same with its one span held otherwise: ``faces``, ``direct``."""
+    (span,) = beam.spans
+    return replace(beam, spans=(span._replace(**changes),))
 
 
 def scaled(beam: Subject, case: str, factor: float) -> Subject:

@@ -20,12 +20,12 @@ from ifccheck.beam import (
     Box,
     Combination,
     Given,
-    Line,
     Load,
     Member,
     Model,
     Outline,
     OutOfScope,
+    RatedSpan,
     Reason,
     Remark,
     Run,
@@ -265,15 +265,16 @@ def _reasons(beam: Beam, i: int) -> tuple[Reason, ...]:
 
 def made_up_sheet(beam: Beam, rating: Rating) -> Sheet:
     if beam.axis is None:
-        return Sheet(beam, rating, None, (), (), (), None, math.nan, (), ())
+        return Sheet(beam, rating, (), (), (), (), None, math.nan, (), ())
     length = beam.length
     end = Support("fixed" if beam.mark.startswith("W") else "pinned", 300.0, "brief")
     span = Span(0.0, length, Support("pinned", 300.0, "touches a column"), end)
+    spans = (RatedSpan(span, (150.0, length - 150.0), (True, True)),)
     blocked = any(reason.blocking for reason in rating.reasons)
     return Sheet(
         beam=beam,
         rating=rating,
-        span=span,
+        spans=spans,
         loads=_loads(beam),
         bars=_bars(length),
         stirrups=_stirrups(length),
@@ -428,9 +429,7 @@ def made_up_report(
         model=model,
         ratings=ratings,
         sheet=sheets.__getitem__,
-        lines=tuple(
-            Line((key,), (sheet.span,)) for key, sheet in sheets.items() if sheet.span
-        ),
+        spans={key: sheet.spans for key, sheet in sheets.items() if sheet.spans},
         cases=tuple(_case(case, list(ratings.values())) for case in cases),
         combinations=(
             Combination("1.4 permanent", "strength", {"self": (1.4, 1.4), "permanent": (1.4, 1.4)}),

@@ -6,7 +6,7 @@ from pathlib import Path
 
 import pytest
 
-from ifccheck.beam import Axis, Beam, Contact, Given, Outline, Reason, Run, Span, Support
+from ifccheck.beam import Axis, Beam, Contact, Given, Outline, Reason, Run, Support
 from ifccheck.brief.load import load_brief
 from ifccheck.brief.loads import loads_on_beams
 from ifccheck.brief.selecting import check_reached, join, selections
@@ -188,9 +188,8 @@ def test_point_loads_stand_where_the_brief_says(load):
 
 def test_a_line_without_places_covers_body_and_span(load):
     brief = load(entry(beams='["B-1"]', line='"3 kN/m"'))
-    pin = Support("pinned", 0.0, "brief")
-    longer = lay(brief, beam("B-1"), spans={"B-1": Span(-100.0, 6150.0, pin, pin)})
-    shorter = lay(brief, beam("B-1"), spans={"B-1": Span(150.0, 5850.0, pin, pin)})
+    longer = lay(brief, beam("B-1"), spans={"B-1": (-100.0, 6150.0)})
+    shorter = lay(brief, beam("B-1"), spans={"B-1": (150.0, 5850.0)})
     unknown = lay(brief, beam("B-1"))
     assert (longer[0].start, longer[0].end) == (-100.0, 6150.0)
     assert (shorter[0].start, shorter[0].end) == (0.0, 6000.0)

@@ -52,7 +52,7 @@ def with_openings(made: Subject, *openings: Opening, outline: Outline | None = N
 
 
 def judged(made: Subject, beam) -> Net:
-    standing = Standing(made.line, made.faces, (0.0, 0.0), "test")
+    standing = Standing(made.spans, (0.0, 0.0), "test")
     return net_of(beam, standing, made.loads, made)
 
 
@@ -546,7 +546,7 @@ def test_a_hole_that_no_opening_tells_of_is_a_step() -> None:
     made = subject()
     runs, _ = net_runs(made.beam.runs, (hole(2500),))
     drawn = tuple(replace(run, whole=None) for run in runs)
-    found = [each.text for each in shape_reasons(drawn, made.span, made.faces, STANDARD)]
+    found = [each.text for each in shape_reasons(drawn, made.spans, STANDARD)]
     assert found == [
         "not rated within one depth of the step at x = 2.50 m",
         "not rated within one depth of the step at x = 2.65 m",

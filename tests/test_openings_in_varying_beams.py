@@ -16,7 +16,7 @@ from ifccheck.rating.results import LimitStateRating, Rating
 from ifccheck.rating.shape import deep_member
 from ifccheck.rating.subject import Subject
 from tests.bodies_of_beams import Bodies
-from tests.made_subjects import STANDARD, line, rated, subject
+from tests.made_subjects import STANDARD, held, line, rated, subject
 from tests.models import answers, brief, model, rate_model, rectangle
 from tests.test_openings import hole, texts, weight_on, with_openings
 from tests.test_openings_whole import LOADS as WHOLE_LOADS
@@ -132,10 +132,10 @@ def test_no_slab_counts_along_a_beam_whose_section_varies(made: Subject) -> None
 
 def test_slab_on_top_makes_a_beam_a_deep_member() -> None:
     """Its clear span is 2.1 times its own depth, and less than twice that with the slab."""
-    faces = (0.0, 1260.0)
+    spans = held(subject(length=1260.0), faces=(0.0, 1260.0)).spans
     bare, topped = (Run(0.0, 1260.0, box(0.0, high)) for high in (600.0, 700.0))
-    assert not list(deep_member([bare], faces, STANDARD))
-    (reason,) = deep_member([topped], faces, STANDARD)
+    assert not list(deep_member([bare], spans, STANDARD))
+    (reason,) = deep_member([topped], spans, STANDARD)
     assert reason.text.startswith("deep member")
 
 

@@ -12,7 +12,7 @@ import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 
-from ifccheck.beam import SELF, Anchor, Axis, Outline, Run, Span, Support
+from ifccheck.beam import SELF, Anchor, Axis, Outline, RatedSpan, Run, Span, Support
 from ifccheck.publish.drawings import diagram, section
 from ifccheck.publish.elevation import LEFT, RIGHT, WIDTH, Frame, elevation
 from ifccheck.publish.plan import framing_plans
@@ -63,7 +63,7 @@ def test_a_slender_beam_says_how_much_its_heights_are_stretched() -> None:
     assert axis
     run = replace(sheet.beam.runs[0], end=20_000.0)
     beam = replace(sheet.beam, axis=replace(axis, length=20_000.0), runs=(run,))
-    svg = elevation(replace(sheet, beam=beam, span=None))
+    svg = elevation(replace(sheet, beam=beam, spans=()))
     stretch = Frame(20_000.0, 600.0).exaggeration
     assert stretch > 1
     assert f"heights drawn {stretch} times the lengths" in texts(svg)
@@ -407,8 +407,10 @@ def varying_sheet(*runs: Run) -> Sheet:
     assert sheet.beam.axis
     axis = replace(sheet.beam.axis, length=runs[-1].end)
     support = Support("pinned", 200.0, "test")
-    span = Span(100.0, runs[-1].end - 100.0, support, support)
-    return replace(sheet, beam=replace(sheet.beam, axis=axis, runs=runs), span=span)
+    length = runs[-1].end
+    span = Span(100.0, length - 100.0, support, support)
+    spans = (RatedSpan(span, (200.0, length - 200.0), (True, True)),)
+    return replace(sheet, beam=replace(sheet.beam, axis=axis, runs=runs), spans=spans)
 
 
 def at(low: float, high: float) -> Outline:
@@ -478,7 +480,7 @@ def test_a_bearing_is_drawn_to_the_face_that_is_calculated_with() -> None:
     sheet = varying_sheet(Run(0.0, 6000.0, at(0, 800)))
     pinned = [Support("pinned", width, "test") for width in (400.0, 300.0)]
     span = Span(0.0, 6150.0, *pinned)
-    svg = elevation(replace(sheet, span=span, faces=(400.0, 6000.0)))
+    svg = elevation(replace(sheet, spans=(RatedSpan(span, (400.0, 6000.0), (True, True)),)))
     along = SPAN_OF_STRIP / 6000.0
     first, last = (
         [x for x, _ in numbers(each.get("d") or "")] for each in of_class(svg, "bearing")

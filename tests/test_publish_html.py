@@ -185,7 +185,7 @@ def test_a_sheet_tells_how_the_demand_arises() -> None:
         CaseShare("floor", "imposed", 1.5, 41.0e6, 5e3),
         CaseShare("press", "imposed", math.nan, 0.0, 0.0),
     )
-    reactions = (CaseReaction("self", 15.3e3, 15.4e3, 0.0, -8.1e6),)
+    reactions = (CaseReaction("self", (15.3e3, 15.4e3), 0.0, -8.1e6),)
     checks = (replace(sheet.checks[0], shares=shares),)
     text = Seen(sheet_html(replace(sheet, checks=checks, reactions=reactions), "")).text
     rows = text[text.index("how moment and shear arise") :]
@@ -273,7 +273,7 @@ def test_a_case_with_an_unrated_beam_in_its_path_has_no_factor() -> None:
 
 def test_a_report_without_beams_still_renders() -> None:
     model = replace(REPORT.model, beams=(), members=())
-    empty = replace(REPORT, model=model, ratings={}, cases=(), lines=(), assumptions=())
+    empty = replace(REPORT, model=model, ratings={}, cases=(), spans={}, assumptions=())
     seen = Seen(render(empty))
     assert "0 beams in scope" in seen.text
     assert "No beam could be rated." in seen.text

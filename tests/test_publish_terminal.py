@@ -151,7 +151,7 @@ def shared_out(sheet: Sheet) -> Sheet:
     idle = SheetCheck("flexure, hogging", "10.1", "", (), 0.0, NOTHING_DEMANDED)
     doubt = Remark(sheet.beam.key, "read", "two bars lie outside the body", "doubt")
     rating = replace(sheet.rating, remarks=(*sheet.rating.remarks, doubt))
-    reactions = (CaseReaction("self", 15.3e3, 15.4e3, -8.1e6, 0.0),)
+    reactions = (CaseReaction("self", (15.3e3, 15.4e3), -8.1e6, 0.0),)
     return replace(sheet, rating=rating, checks=(*checks, idle), reactions=reactions)
 
 

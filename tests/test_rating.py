@@ -16,7 +16,7 @@ from ifccheck.rating.elements import Elements
 from ifccheck.rating.results import Rating
 from ifccheck.rating.subject import Subject
 from ifccheck.rating.utilisation import peaks_of, worst_of
-from tests.made_subjects import line, point, rated, scaled, subject
+from tests.made_subjects import held, line, point, rated, scaled, subject
 
 loads_of_floor = st.floats(2.0, 25.0)
 forces = st.floats(5e3, 250e3)
@@ -249,7 +249,7 @@ def cantilever(bars_stop_before_the_tip: float) -> Subject:
         loads=(line("floor", 10.0, length=2200.0), point("press", 20e3, 2180.0)),
     )  # fmt: skip
     bars = tuple(replace(bar, end=2200.0 - bars_stop_before_the_tip) for bar in beam.bars)
-    return replace(beam, bars=bars, faces=(0.0, 2200.0))
+    return held(replace(beam, bars=bars), faces=(0.0, 2200.0))
 
 
 def test_bars_that_stop_in_the_end_cover_of_a_cantilever_serve_it() -> None:

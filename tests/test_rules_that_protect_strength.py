@@ -16,7 +16,7 @@ import pytest
 from ifccheck.beam import Anchor, Bars, Case, Given, Load, Outline, Run, Stirrups, Verdict
 from ifccheck.rating.results import LimitStateRating, Rating
 from ifccheck.rating.subject import Subject
-from tests.made_subjects import line, point, rated, subject
+from tests.made_subjects import held, line, point, rated, subject
 
 OWN = 24e-6 * 300.0 * 600.0
 """Self weight of the made beam [N/mm]"""
@@ -147,7 +147,7 @@ def test_an_end_that_is_not_compressed_is_checked_at_the_face() -> None:
         length=3200.0, bottom=5, spacing=300.0, loads=(line("floor", 145.0, length=3200.0),)
     )  # fmt: skip
     pressed = of(stout)
-    hung = of(replace(stout, direct=(False, False)))
+    hung = of(held(stout, direct=(False, False)))
     check_adequate(pressed)
     check_short(hung, "Shear")
     face = 222.9 * 1400.0
@@ -245,7 +245,7 @@ def test_a_fixed_end_holds_itself() -> None:
         length=2200.0, top=4, bearing=0.0, ends=("fixed", "free"),
         loads=(point("press", -40e3, 1500.0),),
     )  # fmt: skip
-    assert lifts(of(replace(beam, faces=(0.0, 2200.0)))) == []
+    assert lifts(of(held(beam, faces=(0.0, 2200.0)))) == []
 
 
 # The face in tension -----------------------------------------------------------------------------
@@ -257,7 +257,7 @@ def cantilever(top: int, bottom: int, depth: float = 600.0) -> Rating:
         length=2200.0, depth=depth, top=top, bottom=bottom, bearing=0.0, ends=("fixed", "free"),
         loads=loads,
     )  # fmt: skip
-    return of(replace(beam, faces=(0.0, 2200.0)))
+    return of(held(beam, faces=(0.0, 2200.0)))
 
 
 def test_a_cantilever_with_bars_only_at_its_bottom_falls_short() -> None:
@@ -272,7 +272,8 @@ def test_the_depth_is_that_of_the_face_in_tension() -> None:
         length=2200.0, top=4, bottom=0, bearing=0.0, ends=("fixed", "free"),
         loads=(line("floor", 10.0, length=2200.0),),
     )  # fmt: skip
-    deep = replace(sound, faces=(0.0, 2200.0), bars=tuple(replace(b, z=400.0) for b in sound.bars))
+    bars = tuple(replace(bar, z=400.0) for bar in sound.bars)
+    deep = held(replace(sound, bars=bars), faces=(0.0, 2200.0))
     force = 0.85 * 4 * 300.0 * 400.0
     lever = 400.0 - force / (0.805 * 0.65 * 30.0 * 300.0) / 2.0
     assert state(of(deep), "FlexureHogging").resistance == pytest.approx(force * lever, rel=1e-6)
@@ -290,7 +291,7 @@ def tee(top: int, bottom: int) -> Rating:
         loads=(line("floor", 10.0, length=2200.0),),
     )  # fmt: skip
     run = Run(0.0, 2200.0, TEE)
-    return of(replace(beam, beam=replace(beam.beam, runs=(run,)), faces=(0.0, 2200.0)))
+    return of(held(replace(beam, beam=replace(beam.beam, runs=(run,))), faces=(0.0, 2200.0)))
 
 
 def test_of_a_flange_in_tension_only_its_steel_counts() -> None:

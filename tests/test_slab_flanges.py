@@ -634,7 +634,7 @@ def test_openings_and_slab_go_together() -> None:
     hole = Opening(2000.0, 2150.0, -150.0, 150.0, 225.0, 375.0, "rectangle")
     beam = replace(made_beam("beam"), openings=(hole,))
     slab = counted(beam, asked(met(made_slab(), beam=replace(beam, key="B"))), made.loads)
-    standing = Standing(made.line, made.faces, (0.0, 0.0), "test")
+    standing = Standing(made.spans, (0.0, 0.0), "test")
     net = net_of(beam, standing, made.loads, made, slab)
     assert net.body is not None
     within = next(run for run in net.body.runs if run.whole)

@@ -38,7 +38,8 @@ def stand(
 
 def measured(standing: Standing) -> tuple[float, float, float, float]:
     """Start and end of the span, and the two faces."""
-    return (standing.span.start, standing.span.end, *standing.faces)
+    (rated,) = standing.spans
+    return (*standing.reach, *rated.faces)
 
 
 FACING = (contact("start", "end"), contact("end", "end", 300.0))
@@ -154,8 +155,8 @@ def test_the_span_is_centre_to_centre_however_far_an_end_is_drawn_into_its_colum
             ends[0]._replace(end=overlap),
             ends[1]._replace(start=6000.0 - overlap),
         ]
-    span = stand(*ends, bearings=(bearing, bearing)).span
-    assert span.end - span.start == pytest.approx(6000.0 - 2.0 * overlap + 400.0)
+    (rated,) = stand(*ends, bearings=(bearing, bearing)).spans
+    assert rated.length == pytest.approx(6000.0 - 2.0 * overlap + 400.0)
 
 
 def test_a_cantilever_spans_from_the_face_and_says_so() -> None:

@@ -331,7 +331,7 @@ def test_a_beam_with_a_step_is_not_adequate_and_falls_short_elsewhere() -> None:
     light, heavy = (line("floor", 2.0),), (line("floor", 60.0),)
     for loads, verdict in ((light, Verdict.NOT_RATED), (heavy, Verdict.FALLS_SHORT)):
         beam = stepped(loads)
-        reasons = tuple(shape_reasons(beam.beam.runs, beam.span, beam.faces, STANDARD))
+        reasons = tuple(shape_reasons(beam.beam.runs, beam.spans, STANDARD))
         assert [reason.text for reason in reasons] == [
             "not rated within one depth of the step at x = 4.50 m"
         ]
@@ -365,7 +365,7 @@ def test_steps_that_leave_nothing_to_check_block() -> None:
         subject(length=1500.0), Run(0.0, 750.0, box(300, 0, 600)),
         Run(750.0, 1500.0, box(300, 0, 450)),
     )  # fmt: skip
-    texts = [r.text for r in shape_reasons(beam.beam.runs, beam.span, beam.faces, STANDARD)
+    texts = [r.text for r in shape_reasons(beam.beam.runs, beam.spans, STANDARD)
              if r.blocking]  # fmt: skip
     assert texts[-1] == "steps in the section leave no stretch of it to be rated"
 
@@ -374,7 +374,7 @@ def test_steps_that_leave_nothing_to_check_block() -> None:
 def test_a_deep_member_is_not_rated(depth: float, deep: bool) -> None:
     """The clear span is 5.6 m: 10.7.1 begins below twice the depth (from memory)."""
     beam = subject(depth=depth)
-    texts = [r.text for r in shape_reasons(beam.beam.runs, beam.span, beam.faces, STANDARD)]
+    texts = [r.text for r in shape_reasons(beam.beam.runs, beam.spans, STANDARD)]
     assert [("deep member" in text, "10.7.1" in text) for text in texts] == [(True, True)] * deep
 
 

@@ -18,7 +18,7 @@ from ifccheck.rating.batch import Batch
 from ifccheck.rating.results import Rating
 from ifccheck.rating.stiffness import second_moments
 from ifccheck.rating.subject import Subject
-from tests.made_subjects import line, point, rated, subject
+from tests.made_subjects import held, line, point, rated, subject
 from tests.test_analysis_statics import SUPPORTS, Row, span_rows, table
 
 LENGTH = 6000.0
@@ -133,7 +133,7 @@ def haunched(
         Run(0.0, reach, end, middle), Run(reach, LENGTH - reach, middle),
         Run(LENGTH - reach, LENGTH, middle, end),
     )  # fmt: skip
-    return replace(made, beam=replace(made.beam, runs=runs), faces=(0.0, LENGTH))
+    return held(replace(made, beam=replace(made.beam, runs=runs)), faces=(0.0, LENGTH))
 
 
 def depth_at(deep: float, reach: float, x: np.ndarray) -> np.ndarray:

@@ -3,15 +3,19 @@
 from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass, fields
+from dataclasses import dataclass, fields, replace
 from typing import Self
 
 import numpy as np
 
+from ifccheck.analysis.spans import SpanTable, by_spans
 from ifccheck.beam import Load, LoadKind
-from ifccheck.mechanics.arrays import Floats, Ints
+from ifccheck.mechanics.arrays import Bools, Floats, Ints
 
 LINE, POINT, MOMENT = 0, 1, 2
+
+_SHORT = 1e-6
+"""A line no longer than this has one intensity [mm]"""
 
 _KIND_CODES: Mapping[LoadKind, int] = {"line": LINE, "point": POINT, "moment": MOMENT}
 
@@ -34,6 +38,10 @@ class LoadTable:
     """[N/mm], [N] or [N*mm] by kind (P)"""
     value_end: Floats
     """Intensity at the end of a line [N/mm] (P)"""
+
+    def with_case(self, case: Ints) -> Self:
+        """The same loads in other cases."""
+        return replace(self, case=case)
 
     def take(self, rows: Ints) -> Self:
         """The loads of the given rows, which must keep the order by beam."""
@@ -68,6 +76,53 @@ def load_table(
             value_end=np.array([load.values[1] for load in loads], np.float64),
         )
     )
+
+
+def intensity_at(line: LoadTable, x: Floats) -> Floats:
+    """Intensity of trapezoidal lines at x, one place each [N/mm] (P)."""
+    length = line.end - line.start
+    part = np.divide(x - line.start, length, out=np.zeros_like(x), where=length > _SHORT)
+    return line.value_start + (line.value_end - line.value_start) * part
+
+
+def on_spans(loads: LoadTable, spans: SpanTable, beam_of: Ints) -> LoadTable:
+    """Loads on beams as loads on their spans.
+
+    A line is cut where one span ends and the next begins; a point load or a moment there belongs
+    to the next. What lies before the first span or after the last belongs to that one.
+
+    Parameters
+    ----------
+    loads
+        With the rows of the beams (P).
+    spans
+        Of all beams, in the order of the beams and along each (S).
+    beam_of
+        Beam of each span (S).
+    """
+    if spans.start.size == beam_of[-1] + 1:
+        return loads
+    row, span = by_spans(beam_of, loads.beam)
+    on = replace(loads.take(row), beam=span)
+    first, last = np.diff(beam_of, prepend=-1) > 0, np.diff(beam_of, append=beam_of.size) > 0
+    low, high = np.where(first, -np.inf, spans.start)[span], np.where(last, np.inf, spans.end)[span]
+    line = on.kind == LINE
+    start, end = np.maximum(on.start, low), np.minimum(on.end, high)
+    cut = replace(
+        on,
+        start=np.where(line, start, on.start),
+        end=np.where(line, end, on.end),
+        value_start=np.where(line, intensity_at(on, start), on.value_start),
+        value_end=np.where(line, intensity_at(on, end), on.value_end),
+    )
+    return by_beam(cut.take(np.flatnonzero(_acts_on(on, low, high))))
+
+
+def _acts_on(loads: LoadTable, low: Floats, high: Floats) -> Bools:
+    """Whether each load has a part between its two places (P)."""
+    short = (loads.kind != LINE) | (loads.end <= loads.start)
+    held = (loads.start >= low) & (loads.start < high)
+    return np.where(short, held, np.minimum(loads.end, high) > np.maximum(loads.start, low))
 
 
 def _end_of(load: Load) -> float:

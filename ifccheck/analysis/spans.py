@@ -19,7 +19,7 @@ _KIND_CODES: Mapping[SupportKind, int] = {"free": FREE, "pinned": PINNED, "fixed
 
 @dataclass(frozen=True, slots=True)
 class SpanTable:
-    """One span per row (B)."""
+    """Spans, one row each (B): where each beam makes one, the rows of the beams."""
 
     start: Floats
     """x of the support, or of the tip at a free end [mm] (B)"""
@@ -50,6 +50,28 @@ def span_table(spans: Sequence[Span]) -> SpanTable:
     )
     require_standing(table)
     return table
+
+
+def by_spans(beam_of: Ints, beam: Ints) -> tuple[Ints, Ints]:
+    """Rows that belong to beams, once for every span of their beam.
+
+    Parameters
+    ----------
+    beam_of
+        Beam of each span, ascending (S).
+    beam
+        Beam of each row (R).
+
+    Returns
+    -------
+    tuple
+        Row and span of each pair, in the order of the rows and then of the spans.
+    """
+    first, after = (np.searchsorted(beam_of, beam, side=side) for side in ("left", "right"))
+    counts = after - first
+    row = np.repeat(np.arange(beam.size), counts)
+    within = np.arange(row.size) - np.repeat(np.cumsum(counts) - counts, counts)
+    return row, first[row] + within
 
 
 def require_standing(spans: SpanTable) -> None:

@@ -13,7 +13,7 @@ import numpy as np
 
 from ifccheck.analysis.arrangements import MovingEffects, join_moving
 from ifccheck.analysis.brackets import Brackets, Sections, sum_brackets
-from ifccheck.analysis.loads import LINE, MOMENT, POINT, LoadTable, join_loads
+from ifccheck.analysis.loads import LINE, MOMENT, POINT, LoadTable, intensity_at, join_loads
 from ifccheck.analysis.spans import FIXED, FREE, PINNED, SpanTable, alone, require_standing
 from ifccheck.analysis.stations import SAME_PLACE, StationTable
 from ifccheck.mechanics.arrays import Bools, Floats, Ints
@@ -191,8 +191,8 @@ def _within_spans(spans: SpanTable, loads: LoadTable) -> LoadTable:
         whole,
         start=start,
         end=end,
-        value_start=np.where(loads.kind == LINE, _intensity(whole, start), loads.value_start),
-        value_end=np.where(loads.kind == LINE, _intensity(whole, end), loads.value_end),
+        value_start=np.where(loads.kind == LINE, intensity_at(whole, start), loads.value_start),
+        value_end=np.where(loads.kind == LINE, intensity_at(whole, end), loads.value_end),
     )
     before = np.flatnonzero((loads.kind == LINE) & (whole.start < low))
     after = np.flatnonzero((loads.kind == LINE) & (whole.end > high))
@@ -203,17 +203,10 @@ def _within_spans(spans: SpanTable, loads: LoadTable) -> LoadTable:
     return join_loads(moved, off_start, off_end)
 
 
-def _intensity(line: LoadTable, x: Floats) -> Floats:
-    """Intensity of a trapezoidal line at x [N/mm]."""
-    length = line.end - line.start
-    part = np.divide(x - line.start, length, out=np.zeros_like(x), where=length > SAME_PLACE)
-    return line.value_start + (line.value_end - line.value_start) * part
-
-
 def _as_points(line: LoadTable, at: Floats, low: Floats | float, high: Floats | float) -> LoadTable:
     """The force of what a line has between low and high, as a point load."""
     start, end = np.maximum(line.start, low), np.minimum(line.end, high)
-    force = (_intensity(line, start) + _intensity(line, end)) / 2.0 * (end - start)
+    force = (intensity_at(line, start) + intensity_at(line, end)) / 2.0 * (end - start)
     kind = np.full_like(line.kind, POINT)
     return replace(line, kind=kind, start=at, end=at, value_start=force, value_end=force)
 

@@ -16,6 +16,7 @@ from ifccheck.brief.model import (
     Basis,
     Brief,
     Defaults,
+    FrameOptions,
     LoadTableFile,
     ReinforcementField,
     Scope,
@@ -50,6 +51,7 @@ def to_brief(table: schema.BriefTable, path: Path, source: Source) -> Brief:
         scope=_scope(table.scope),
         from_model=_from_model(table.cases),
         load_tables=_load_tables(table.load_tables, path),
+        frame=_frame(table),
     )
     _check_slab_bars(brief)
     return brief
@@ -63,6 +65,17 @@ def _check_slab_bars(brief: Brief) -> None:
                 "counts only where slab counts as a flange: write slab_flange = true here, or"
                 " slab_flanges = true under [defaults]",
             )
+
+
+def _frame(table: schema.BriefTable) -> FrameOptions | None:
+    if table.frame is None:
+        return None
+    if table.defaults.supports is not None:
+        raise FaultError(
+            ("frame",),
+            "takes supports from the model, and defaults.supports states them: leave one out",
+        )
+    return FrameOptions(table.frame.restraint, table.frame.continuity)
 
 
 def _scope(table: schema.ScopeTable) -> Scope:
@@ -82,7 +95,13 @@ def _cases(tables: Mapping[str, schema.CaseTable]) -> tuple[Case, ...]:
         _check_case(name, table, list(tables))
     return tuple(
         Case(
-            name, table.nature, table.category, table.rated, tuple(table.excludes), table.removable
+            name,
+            table.nature,
+            table.category,
+            table.rated,
+            tuple(table.excludes),
+            table.removable,
+            table.whole,
         )
         for name, table in tables.items()
     )
@@ -99,6 +118,8 @@ def _check_case(name: str, table: schema.CaseTable, names: list[str]) -> None:
             (*path, "removable"),
             f"only a permanent case needs it, {table.nature} may be absent anyway",
         )
+    if table.whole and table.nature == "permanent":
+        raise FaultError((*path, "whole"), "a permanent case acts as a whole anyway")
     for other in table.excludes:
         if other == name or other not in names:
             known = [known for known in names if known != name]

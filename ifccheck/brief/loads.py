@@ -6,7 +6,7 @@ import math
 from collections.abc import Mapping, Sequence
 from typing import NamedTuple
 
-from ifccheck.beam import Beam, Contact, Load, Remark, Span
+from ifccheck.beam import Beam, Contact, Load, Remark
 from ifccheck.brief.merging import Matches
 from ifccheck.brief.model import Brief, LoadEntry, Position
 from ifccheck.brief.quantities import LEAST_LENGTH
@@ -42,7 +42,7 @@ def loads_on_beams(
     brief: Brief,
     matches: Matches,
     beams: Mapping[str, Beam],
-    spans: Mapping[str, Span],
+    spans: Mapping[str, tuple[float, float]],
     contacts: Mapping[str, Sequence[Contact]] | None = None,
 ) -> tuple[Load, ...]:
     """Return every load of the brief on every beam that it reaches.
@@ -60,7 +60,11 @@ def loads_on_beams(
 
 
 def _load(
-    brief: Brief, entry: LoadEntry, beam: Beam, span: Span | None, contacts: Sequence[Contact]
+    brief: Brief,
+    entry: LoadEntry,
+    beam: Beam,
+    span: tuple[float, float] | None,
+    contacts: Sequence[Contact],
 ) -> Load:
     stretch = _stretch(brief, entry, beam, span, contacts)
     projection = _projection(beam) if entry.projected else 1.0
@@ -91,12 +95,16 @@ def _projection(beam: Beam) -> float:
 
 
 def _stretch(
-    brief: Brief, entry: LoadEntry, beam: Beam, span: Span | None, contacts: Sequence[Contact]
+    brief: Brief,
+    entry: LoadEntry,
+    beam: Beam,
+    span: tuple[float, float] | None,
+    contacts: Sequence[Contact],
 ) -> _Stretch:
     if beam.axis is None:
         return _Stretch(0.0, 0.0, False)
     if entry.start is None and entry.end is None:
-        first, last = (span.start, span.end) if span else (0.0, beam.length)
+        first, last = span or (0.0, beam.length)
         return _Stretch(min(0.0, first), max(beam.length, last), False)
     from_end = entry.anchor is not None and _anchored_at_end(brief, entry, beam, contacts)
     if entry.kind != "line":

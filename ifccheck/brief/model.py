@@ -25,6 +25,8 @@ ReinforcementField = Literal[
 
 
 SlabFlange = Literal["none", "level", "on top"]
+Restraint = Literal["pinned", "fixed", "columns"]
+Continuity = Literal["bars", "always", "never"]
 """Whether slab that is modelled apart counts as a flange: none; what is level with the beam; also
 what lies on its top."""
 
@@ -201,6 +203,16 @@ class Defaults:
 
 
 @dataclass(frozen=True, slots=True)
+class FrameOptions:
+    """How beams stand that the brief says nothing of: on what the model shows under them."""
+
+    restraint: Restraint = "pinned"
+    """How an end stands that runs into a column or a wall"""
+    continuity: Continuity = "bars"
+    """Where moment passes from beam to beam over a support: where bars do, always or never"""
+
+
+@dataclass(frozen=True, slots=True)
 class Scope:
     """Element queries by their place: what is a beam beside what is one by class, and what is
     left out."""
@@ -268,6 +280,8 @@ class Brief:
     """Tables whose rows are among ``loads``"""
     from_model: Mapping[str, TakenCase] = field(default_factory=dict)
     """By the name of a load case in the model: the case of the brief that takes it"""
+    frame: FrameOptions | None = None
+    """None where every support is stated by the brief"""
 
     @property
     def asks_for_slabs(self) -> bool:

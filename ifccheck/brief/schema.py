@@ -16,7 +16,7 @@ from pydantic import (
 
 from ifccheck.beam import CombinationKind, Face, Nature, SourceName, SupportKind
 from ifccheck.brief.mark_ranges import expanded
-from ifccheck.brief.model import Position, SlabBars, SlabFlange
+from ifccheck.brief.model import Continuity, Position, Restraint, SlabBars, SlabFlange
 from ifccheck.brief.places import did_you_mean
 from ifccheck.brief.quantities import (
     CONCRETE_STRENGTH,
@@ -135,6 +135,13 @@ class MaterialsTable(Table):
     aggregate_size: Annotated[float, _within(Range("length", "0 mm", "100 mm"))] | None = None
 
 
+class FrameTable(Table):
+    """``[frame]``"""
+
+    restraint: Restraint = "pinned"
+    continuity: Continuity = "bars"
+
+
 class DefaultsTable(MaterialsTable):
     """``[defaults]``"""
 
@@ -176,6 +183,7 @@ class CaseTable(Table):
     removable: bool = False
     from_model: Annotated[tuple[str, ...], PlainValidator(_names)] = ()
     upward: bool = False
+    whole: bool = False
 
 
 def _mark(text: str) -> str:
@@ -274,6 +282,7 @@ class BriefTable(Table):
     basis: BasisTable
     scope: ScopeTable = Field(default_factory=ScopeTable)
     defaults: DefaultsTable = Field(default_factory=DefaultsTable)
+    frame: FrameTable | None = None
     reinforcement: ReinforcementTable = Field(default_factory=ReinforcementTable)
     cases: dict[Name, CaseTable] = Field(default_factory=dict)
     loads: list[LoadTable] = Field(default_factory=list)

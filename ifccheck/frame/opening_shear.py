@@ -26,9 +26,20 @@ from __future__ import annotations
 import math
 from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
+from itertools import pairwise
 from typing import TYPE_CHECKING
 
-from ifccheck.beam import Beam, Contact, Load, Opening, Reason, Run, ShearLoss, Stirrups
+from ifccheck.beam import (
+    Beam,
+    Contact,
+    Load,
+    Opening,
+    RatedSpan,
+    Reason,
+    Run,
+    ShearLoss,
+    Stirrups,
+)
 from ifccheck.frame.figures import Stretch, figure_of, levels_of, narrowest, parts_of
 from ifccheck.frame.net_outlines import NOTHING, place_of, without
 from ifccheck.units import show
@@ -66,10 +77,8 @@ RULE = (  # its figures from memory
 class Surroundings:
     """What stands near the openings of a beam."""
 
-    faces: tuple[float, float]
-    """Of the two supports [mm]"""
-    held: tuple[bool, bool]
-    """Whether there is a support at the start and at the end"""
+    spans: Sequence[RatedSpan]
+    """Of the beam, in their order along it"""
     loads: Sequence[Load]
     stirrups: Sequence[Stirrups]
     changes: Sequence[float] = ()
@@ -203,10 +212,17 @@ def _faults(one: Measured, everyone: Sequence[Measured], around: Surroundings) -
 
 
 def _near_support(one: Measured, around: Surroundings) -> Iterator[str]:
-    gaps = one.opening.start - around.faces[0], around.faces[1] - one.opening.end
-    for end, gap, held in zip(("start", "end"), gaps, around.held, strict=True):
-        if held and gap < DISTURBED * one.depth - NOTHING:
-            yield f"it lies within one depth of the support at the {end}"
+    reach = DISTURBED * one.depth - NOTHING
+    first, last = around.spans[0], around.spans[-1]
+    if first.span.start_support.kind != "free" and one.opening.start - first.faces[0] < reach:
+        yield "it lies within one depth of the support at the start"
+    if last.span.end_support.kind != "free" and last.faces[1] - one.opening.end < reach:
+        yield "it lies within one depth of the support at the end"
+    for before, after in pairwise(around.spans):
+        low, high = before.faces[1] - reach, after.faces[0] + reach
+        if one.opening.end > low and one.opening.start < high:
+            place = show(before.span.end, "length")
+            yield f"it lies within one depth of the support at x = {place}"
 
 
 def _near_change(one: Measured, changes: Sequence[float]) -> Iterator[str]:

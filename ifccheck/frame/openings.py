@@ -14,6 +14,7 @@ from ifccheck.beam import (
     Load,
     Opening,
     RatedBody,
+    RatedSpan,
     Reason,
     Remark,
     Run,
@@ -83,12 +84,10 @@ def net_of(
     runs, gone = net_runs(with_flanges(beam.runs, slab.flanges), beam.openings)
     if impossible or gone:
         return Net(reasons=(*slab.reasons, *impossible, *gone), remarks=slab.remarks)
-    kinds = standing.span.start_support.kind, standing.span.end_support.kind
-    held = kinds[0] != "free", kinds[1] != "free"
     changes = [run.start for run in beam.runs[1:]]
-    around = Surroundings(standing.faces, held, loads, steel.stirrups, changes, resting)
+    around = Surroundings(standing.spans, loads, steel.stirrups, changes, resting)
     judged = judged_openings(beam, around)
-    light = (all(held) and "fixed" in kinds) or _upward(loads)
+    light = _bends_back(standing.spans) or _upward(loads)
     notes = [Remark(beam.key, STAGE, told(one), "note") for one in judged]
     taken = (RULE, NET_WEIGHT if light else GROSS_WEIGHT)
     losses = (*slab.losses, *(loss for one in judged for loss in losses_of(one)))
@@ -101,6 +100,12 @@ def net_of(
             *(Remark(beam.key, STAGE, text, "assumption") for text in taken),
         ),
     )  # fmt: skip
+
+
+def _bends_back(spans: Sequence[RatedSpan]) -> bool:
+    """Whether weight on one part of the beam may relieve another."""
+    kinds = spans[0].span.start_support.kind, spans[-1].span.end_support.kind
+    return len(spans) > 1 or ("fixed" in kinds and "free" not in kinds)
 
 
 def _without_openings(beam: Beam, slab: Counted) -> Net:

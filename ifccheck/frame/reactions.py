@@ -32,13 +32,13 @@ def resting_between(
     beam: Beam, contacts: Sequence[Contact], standing: Standing
 ) -> tuple[Contact, ...]:
     """Contacts that may bring a reaction to a beam as it stands; see ``between_reactions``."""
-    span = standing.span
+    first, last = standing.ends
     return between_reactions(
         contacts,
         beam.length,
         standing.bearings,
-        free_start=span.start_support.kind == "free",
-        free_end=span.end_support.kind == "free",
+        free_start=first.kind == "free",
+        free_end=last.kind == "free",
     )
 
 

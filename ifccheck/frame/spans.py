@@ -6,9 +6,9 @@ from collections.abc import Sequence
 from operator import attrgetter
 from typing import Literal, NamedTuple
 
-from ifccheck.beam import Beam, Contact, Given, Line, Reason, Remark, Span, Support
+from ifccheck.beam import Beam, Contact, Given, RatedSpan, Reason, Remark, Span, Support
 from ifccheck.frame.boxes import section_extent
-from ifccheck.frame.carrying import END_TO_END
+from ifccheck.frame.carrying import END_TO_END, pressed_ends
 from ifccheck.frame.contacts import RESTING, TOLERANCE, is_seat
 from ifccheck.units import show
 
@@ -21,9 +21,8 @@ UNKNOWN_BEARING = 0.05
 class Standing(NamedTuple):
     """How one beam stands alone."""
 
-    line: Line
-    faces: tuple[float, float]
-    """x of the faces of the two supports, within the beam [mm]; a free end is its own face"""
+    spans: tuple[RatedSpan, ...]
+    """In their order along the beam"""
     bearings: tuple[float, float]
     """How far the bearings that the brief states reach in from either end [mm]"""
     source: str
@@ -32,9 +31,14 @@ class Standing(NamedTuple):
     remarks: tuple[Remark, ...] = ()
 
     @property
-    def span(self) -> Span:
-        """The one span of the line."""
-        return self.line.spans[0]
+    def reach(self) -> tuple[float, float]:
+        """x of the start of its first span and of the end of its last [mm]."""
+        return self.spans[0].span.start, self.spans[-1].span.end
+
+    @property
+    def ends(self) -> tuple[Support, Support]:
+        """How the start of its first span and the end of its last are held."""
+        return self.spans[0].span.start_support, self.spans[-1].span.end_support
 
 
 class _Seating(NamedTuple):
@@ -90,8 +94,13 @@ def stand_alone(
         start, end = _stated(start, end, supports, stated.value)
         source = stated.source
     return Standing(
-        line=Line(beams=(beam.key,), spans=(Span(start, end, *supports),)),
-        faces=(seats[0].face, length - seats[1].face),
+        spans=(
+            RatedSpan(
+                Span(start, end, *supports),
+                faces=(seats[0].face, length - seats[1].face),
+                direct=pressed_ends(contacts),
+            ),
+        ),
         bearings=(seats[0].face, seats[1].face),
         source=source,
         reasons=() if stated is None else _too_short(length, seats, stated),

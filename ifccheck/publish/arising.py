@@ -6,7 +6,7 @@ import math
 from collections.abc import Sequence
 from dataclasses import dataclass
 
-from ifccheck.beam import Span
+from ifccheck.beam import RatedSpan, Span
 from ifccheck.publish.quantities import quantity_words
 from ifccheck.sheet import CaseReaction, CaseShare, Sheet
 from ifccheck.units import show
@@ -30,29 +30,42 @@ class ReactionRow:
     """What one case, unfactored, asks of the supports: forces [kN] and moments [kN·m]."""
 
     case: str
-    start: str
-    end: str
+    forces: tuple[str, ...]
+    """Of every support, from the start of the beam to its end"""
     start_moment: str
     end_moment: str
 
 
 def span_words(sheet: Sheet) -> str:
-    """Return the span, from where to where it reaches, and what says so."""
-    span = sheet.span
-    if span is None:
+    """Return the spans, from where to where they reach, and what says so."""
+    if not sheet.spans:
         return ""
+    source = next((item.source for item in sheet.rating.basis if item.name[:4] == "Span"), "")
+    words = "; ".join(_one_span(each.span) for each in sheet.spans)
+    return words + (f" ({source})" if source else "")
+
+
+def _one_span(span: Span) -> str:
     length = quantity_words(span.end - span.start, "length")
     ends = " to ".join(quantity_words(place, "length") for place in (span.start, span.end))
-    source = next((item.source for item in sheet.rating.basis if item.name == "Span"), "")
-    return f"{length}, x = {ends}" + (f" ({source})" if source else "")
+    return f"{length}, x = {ends}"
 
 
-def support_words(span: Span) -> str:
-    """Return how the two ends stand, and what says so."""
-    ends = (span.start_support, span.end_support)
-    if ends[0].source == ends[1].source:
-        return f"{ends[0].kind} – {ends[1].kind} ({ends[0].source})"
-    return " – ".join(f"{end.kind} ({end.source})" for end in ends)
+def support_words(spans: Sequence[RatedSpan]) -> str:
+    """Return how the beam is held from its start to its end, and what says so."""
+    if not spans:
+        return ""
+    supports = [spans[0].span.start_support, *(each.span.end_support for each in spans)]
+    sources = dict.fromkeys(support.source for support in supports)
+    if len(sources) == 1:
+        return f"{' – '.join(support.kind for support in supports)} ({supports[0].source})"
+    return " – ".join(f"{support.kind} ({support.source})" for support in supports)
+
+
+def support_names(sheet: Sheet) -> list[str]:
+    """Return what the supports are called in a table of reactions, from start to end."""
+    inner = [f"x = {show(each.span.end, 'length')}" for each in sheet.spans[:-1]]
+    return ["start", *inner, "end"]
 
 
 def share_rows(shares: Sequence[CaseShare]) -> list[ShareRow]:
@@ -91,8 +104,7 @@ def reaction_rows(reactions: Sequence[CaseReaction]) -> list[ReactionRow]:
     return [
         ReactionRow(
             each.case,
-            _force(each.start),
-            _force(each.end),
+            tuple(map(_force, each.forces)),
             _moment(each.start_moment) if held[0] else "",
             _moment(each.end_moment) if held[1] else "",
         )

@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
 from functools import cached_property
+from itertools import pairwise
 from typing import Protocol
 
 from ifccheck.beam import (
@@ -14,9 +15,9 @@ from ifccheck.beam import (
     Beam,
     Load,
     Outline,
+    RatedSpan,
     Ring,
     Run,
-    Span,
     Stirrups,
     Support,
 )
@@ -96,12 +97,8 @@ class Drawable(Protocol):
         """Whose axis and outline are drawn."""
 
     @property
-    def span(self) -> Span | None:
-        """None where nothing tells how it stands."""
-
-    @property
-    def faces(self) -> tuple[float, float] | None:
-        """x of the faces of its supports [mm]; None where nothing tells them."""
+    def spans(self) -> tuple[RatedSpan, ...]:
+        """Empty where nothing tells how it stands."""
 
     @property
     def loads(self) -> tuple[Load, ...]:
@@ -143,8 +140,8 @@ def elevation(sheet: Drawable) -> str:
         *(_stirrup_set(stirrups, frame, foot) for stirrups in sheet.stirrups),
         *(drawn_opening(opening, sheet.beam, frame) for opening in sheet.beam.openings),
         *(_bar_row(i, row, frame) for i, row in enumerate(bars_in_a_row(sheet.bars))),
-        _supports(sheet.span, sheet.faces, runs, frame),
-        _span_line(sheet.span, length, frame, foot + 58.0),
+        _supports(sheet.spans, runs, frame),
+        _span_lines(sheet.spans, length, frame, foot + 58.0),
     ]
     height = foot + 72.0
     scale = f"heights drawn {frame.exaggeration} times the lengths"
@@ -247,18 +244,26 @@ def _stirrup_set(stirrups: Stirrups, frame: Frame, foot: float) -> str:
     return path(lines, "stirrup") + path(ends, "measure") + label((x0 + x1) / 2, y + 11, words, "m")
 
 
-def _supports(
-    span: Span | None, faces: tuple[float, float] | None, runs: Sequence[Run], frame: Frame
-) -> str:
-    if span is None:
+def _supports(spans: Sequence[RatedSpan], runs: Sequence[Run], frame: Frame) -> str:
+    if not spans:
         return ""
-    ends = ((span.start, span.start_support, -1.0), (span.end, span.end_support, 1.0))
-    near, far = (support.bearing / 2.0 for _, support, _ in ends)
-    faces = faces or (span.start + near, span.end - far)
+    (first, faces, _), (last, last_faces, _) = spans[0], spans[-1]
     return "".join(
-        _support(x, support, side, face, runs, frame)
-        for (x, support, side), face in zip(ends, faces, strict=True)
+        [
+            _support(first.start, first.start_support, -1.0, faces[0], runs, frame),
+            *(_inner_support(one, other, runs, frame) for one, other in pairwise(spans)),
+            _support(last.end, last.end_support, 1.0, last_faces[1], runs, frame),
+        ]
     )
+
+
+def _inner_support(before: RatedSpan, after: RatedSpan, runs: Sequence[Run], frame: Frame) -> str:
+    """A support over which the beam goes on, as wide as it is between its two faces."""
+    place = before.span.end
+    x, y = frame.x(place), frame.z(min(z for _, z in outline_of(runs, place).rings[0]))
+    triangle = closed_path([(x, y), (x - 6, y + 11), (x + 6, y + 11)])
+    ends = frame.x(before.faces[1]), frame.x(after.faces[0])
+    return path(triangle, "support") + path(segment(ends[0], y, ends[1], y), "bearing")
 
 
 def _support(
@@ -281,13 +286,18 @@ def _support(
     return path(wall, "support fixed")
 
 
-def _span_line(span: Span | None, length: float, frame: Frame, y: float) -> str:
-    start, end = (span.start, span.end) if span else (0.0, length)
+def _span_lines(spans: Sequence[RatedSpan], length: float, frame: Frame, y: float) -> str:
+    measured = [(each.span.start, each.span.end) for each in spans] or [(0.0, length)]
+    what = "span" if spans else "length"
+    lines = "".join(_span_line(start, end, what, frame, y) for start, end in measured)
+    return lines + label(LEFT, y + 11.0, "start, x = 0", "note")
+
+
+def _span_line(start: float, end: float, what: str, frame: Frame, y: float) -> str:
     x0, x1 = frame.x(start), frame.x(end)
     line = f"{segment(x0, y - 4, x0, y + 4)}{segment(x0, y, x1, y)}{segment(x1, y - 4, x1, y + 4)}"
-    words = f"{'span' if span else 'length'} {show(end - start, 'length')}"
-    origin = label(LEFT, y + 11.0, "start, x = 0", "note")
-    return path(line, "measure") + label((x0 + x1) / 2.0, y - 4.0, words, "m halo") + origin
+    words = f"{what} {show(end - start, 'length')}"
+    return path(line, "measure") + label((x0 + x1) / 2.0, y - 4.0, words, "m halo")
 
 
 class _Loads:

@@ -8,10 +8,10 @@ from __future__ import annotations
 
 import json.encoder
 import math
-from collections.abc import Iterable, Iterator
+from collections.abc import Iterable, Iterator, Sequence
 from functools import lru_cache
 
-from ifccheck.beam import Beam, Opening, Remark, Span, Support
+from ifccheck.beam import Beam, Opening, RatedSpan, Remark, Support
 from ifccheck.publish.report import Report
 from ifccheck.rating import BasisItem, LimitStateRating, Rating, SafeLoad
 from ifccheck.tables import factor_state, utilisation_state
@@ -29,7 +29,7 @@ def _template(*names: str) -> str:
 
 _BEAM = _template(
     "key", "global_id", "ordinal", "mark", "name", "tag", "type", "storey", "material", "length",
-    "span", "verdict", "utilisation", "utilisation_state", "governing", "limit_states",
+    "spans", "verdict", "utilisation", "utilisation_state", "governing", "limit_states",
     "rated_cases", "reasons", "remarks", "basis", "checked", "not_checked",
 )  # fmt: skip
 _OPENING = _template(
@@ -54,7 +54,7 @@ _SINGLE_UNITS = {"point": _text("N"), "line": _text("N/mm")}
 def beam_texts(report: Report) -> Iterator[str]:
     """Return the row of each beam, in the order of the model."""
     for beam in report.model.beams:
-        yield _beam(beam, report.spans.get(beam.key), report.ratings[beam.key])
+        yield _beam(beam, report.spans.get(beam.key, ()), report.ratings[beam.key])
 
 
 def _number(value: float) -> str:
@@ -74,14 +74,14 @@ def _texts(values: tuple[str, ...]) -> str:
     return _list(map(_text, values))
 
 
-def _beam(beam: Beam, span: Span | None, rating: Rating) -> str:
-    row = _row(beam, span, rating)
+def _beam(beam: Beam, spans: Sequence[RatedSpan], rating: Rating) -> str:
+    row = _row(beam, spans, rating)
     if not beam.openings:
         return row
     return f'{row[:-1]}, "openings": {_list(map(_opening, beam.openings))}}}'
 
 
-def _row(beam: Beam, span: Span | None, rating: Rating) -> str:
+def _row(beam: Beam, spans: Sequence[RatedSpan], rating: Rating) -> str:
     governing = rating.governing
     return _BEAM % (
         _text(beam.key),
@@ -94,7 +94,7 @@ def _row(beam: Beam, span: Span | None, rating: Rating) -> str:
         _text(beam.storey),
         _text(beam.material),
         _number(beam.length) if beam.axis else "null",
-        _span(span) if span else "null",
+        _list(map(_span, spans)),
         _text(str(rating.verdict)),
         _number(rating.utilisation),
         _text(utilisation_state(rating.utilisation)),
@@ -114,7 +114,8 @@ def _opening(opening: Opening) -> str:
     return _OPENING % (*map(_number, box), _text(opening.shape), _text(opening.origin))
 
 
-def _span(span: Span) -> str:
+def _span(rated: RatedSpan) -> str:
+    span = rated.span
     ends = _support(span.start_support), _support(span.end_support)
     return _SPAN % (_number(span.start), _number(span.end), *ends)
 

@@ -5,11 +5,11 @@ from __future__ import annotations
 import math
 from collections import Counter
 from collections.abc import Callable, Iterable, Iterator, Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from functools import cached_property
 from itertools import combinations
 
-from ifccheck.beam import Beam, Combination, Line, Model, Nature, Remark, Span, Verdict
+from ifccheck.beam import Beam, Combination, Model, Nature, RatedSpan, Remark, Verdict
 from ifccheck.rating import Rating
 from ifccheck.sheet import Sheet
 
@@ -79,7 +79,8 @@ class Report:
     """By key of the beam"""
     sheet: Callable[[str], Sheet]
     """Called once per beam while rendering"""
-    lines: tuple[Line, ...] = ()
+    spans: Mapping[str, tuple[RatedSpan, ...]] = field(default_factory=dict)
+    """Of every beam of which is known how it stands, by key"""
     cases: tuple[CaseSummary, ...] = ()
     """One for each rated case, in the brief's order"""
     combinations: tuple[Combination, ...] = ()
@@ -114,15 +115,6 @@ class Report:
             not_rated=verdicts[Verdict.NOT_RATED],
             out_of_scope=len(self.model.out_of_scope),
         )
-
-    @cached_property
-    def spans(self) -> dict[str, Span]:
-        """The span of every beam that is a line of its own, by key."""
-        return {
-            line.beams[0]: line.spans[0]
-            for line in self.lines
-            if len(line.beams) == 1 and len(line.spans) == 1
-        }
 
     def beam(self, key: str) -> Beam:
         """Return the beam with this key."""

@@ -111,8 +111,7 @@ def _row(
 
 
 def _span(beam: Beam, report: Report) -> str:
-    span = report.spans.get(beam.key)
-    return metres(span.end - span.start, "") if span else ""
+    return " + ".join(metres(each.length, "") for each in report.spans.get(beam.key, ()))
 
 
 def _first(texts: Iterable[str]) -> str:

@@ -18,6 +18,7 @@ from ifccheck.publish.arising import (
     reaction_rows,
     share_rows,
     span_words,
+    support_names,
     support_words,
 )
 from ifccheck.publish.drawings import diagram, section
@@ -82,6 +83,7 @@ def sheet_html(sheet: Sheet, foot: str) -> str:
         idle=joined(check.title for check in sheet.checks if check.outcome == NOTHING_DEMANDED),
         loads=[_load(load) for load in sheet.loads],
         reactions=(reactions := reaction_rows(sheet.reactions)),
+        supports=support_names(sheet),
         held=any(row.start_moment or row.end_moment for row in reactions),
         steel=_steel(sheet),
         basis=[_basis(item) for item in rating.basis],
@@ -112,8 +114,7 @@ def foot_line(report: Report) -> str:
 
 
 def _facts(sheet: Sheet) -> list[tuple[str, str]]:
-    span = sheet.span
-    standing = [("span", span_words(sheet)), ("supports", support_words(span) if span else "")]
+    standing = [("span", span_words(sheet)), ("supports", support_words(sheet.spans))]
     return beam_facts(sheet.beam, standing)
 
 

@@ -7,7 +7,7 @@ from dataclasses import dataclass
 
 from markupsafe import Markup
 
-from ifccheck.beam import Bars, Beam, DescribedZone, Given, Load, Outline, Run, Span, Stirrups
+from ifccheck.beam import Bars, Beam, DescribedZone, Given, Load, Outline, RatedSpan, Run, Stirrups
 from ifccheck.findings import Finding
 from ifccheck.publish.drawings import section
 from ifccheck.publish.elevation import elevation
@@ -28,8 +28,7 @@ class ReadSheet:
     stirrups: tuple[Stirrups, ...]
     section: Outline | None
     section_x: float
-    span: Span | None = None
-    faces: tuple[float, float] | None = None
+    spans: tuple[RatedSpan, ...] = ()
     loads: tuple[Load, ...] = ()
 
 

@@ -10,7 +10,13 @@ from rich.table import Table
 from rich.text import Text
 
 from ifccheck.beam import Load
-from ifccheck.publish.arising import reaction_rows, share_rows, span_words, support_words
+from ifccheck.publish.arising import (
+    reaction_rows,
+    share_rows,
+    span_words,
+    support_names,
+    support_words,
+)
 from ifccheck.publish.elevation import load_words
 from ifccheck.publish.quantities import measure_words, metres
 from ifccheck.publish.terminal_parts import CAUTION, SHORT, Cell, Terminal
@@ -66,9 +72,9 @@ def _head(sheet: Sheet, to: Terminal) -> Text:
 def _facts(sheet: Sheet) -> Iterator[str]:
     beam = sheet.beam
     yield " – ".join(filter(None, [beam.key, beam.storey, section_words(beam), beam.material]))
-    if sheet.span:
+    if sheet.spans:
         yield f"span: {span_words(sheet)}"
-        yield f"supports: {support_words(sheet.span)}"
+        yield f"supports: {support_words(sheet.spans)}"
 
 
 def _remarks(rating: Rating, to: Terminal, *, doubts: bool) -> Iterator[Text]:
@@ -86,10 +92,10 @@ def _tables(sheet: Sheet, to: Terminal) -> Iterator[Table]:
         )
     rows = reaction_rows(sheet.reactions)
     held = any(row.start_moment or row.end_moment for row in rows)
-    names = ["reactions, unfactored", ">start [kN]", ">end [kN]"]
+    names = ["reactions, unfactored", *(f">{each} [kN]" for each in support_names(sheet))]
     names += [">at the start [kN*m]", ">at the end [kN*m]"] if held else []
     if rows:
-        words = [(r.case, r.start, r.end, r.start_moment, r.end_moment) for r in rows]
+        words = [(r.case, *r.forces, r.start_moment, r.end_moment) for r in rows]
         yield to.table(names, [row[: len(names)] for row in words])
 
 

@@ -8,7 +8,13 @@ from typing import Any
 
 import numpy as np
 
-from ifccheck.analysis.loads import LoadTable, join_loads, load_table, self_weight_lines
+from ifccheck.analysis.loads import (
+    LoadTable,
+    join_loads,
+    load_table,
+    on_spans,
+)
+from ifccheck.analysis.parts import Parts, parts_of
 from ifccheck.analysis.spans import FREE, SpanTable, span_table
 from ifccheck.analysis.stations import SAME_PLACE, StationTable
 from ifccheck.analysis.stiffness import Curvature
@@ -28,7 +34,6 @@ from ifccheck.mechanics.arrays import (
 )
 from ifccheck.mechanics.width_profile import pack_strips
 from ifccheck.rating.covers import bonds_of, column
-from ifccheck.rating.disturbed import disturbed
 from ifccheck.rating.runs import (
     DRAWN,
     RunTable,
@@ -39,10 +44,20 @@ from ifccheck.rating.runs import (
     run_at,
     run_table,
     sections_at,
-    weighed_parts,
 )
 from ifccheck.rating.stiffness import curvature_of
 from ifccheck.rating.subject import Subject
+from ifccheck.rating.weights import self_weight
+from ifccheck.rating.zones import (
+    LossTable,
+    StirrupTable,
+    Stretches,
+    disturbed_stretches,
+    loss_table,
+    losses_at,
+    stirrup_table,
+    stirrups_at,
+)
 
 END_COVER = 100.0
 """Greatest distance from a free end at which bars may stop and count as covered only [mm]"""
@@ -57,58 +72,6 @@ _PLACE: dict[BarPlace, int] = {"own": OWN, "near web": NEAR_WEB, "in flange": IN
 
 
 @dataclass(frozen=True, slots=True)
-class StirrupTable:
-    """The stirrup zones of all beams, one row each (Z)."""
-
-    beam: Ints
-    start: Floats
-    end: Floats
-    spacing: Floats
-    area: Floats
-    """All legs [mm2]; nan where the legs are not stated"""
-    yield_strength: Floats
-
-
-@dataclass(frozen=True, slots=True)
-class Stretches:
-    """Stretches of beams, one row each (D), in any order."""
-
-    beam: Ints
-    start: Floats
-    end: Floats
-
-    def hold(self, beam: Ints, x: Floats) -> Bools:
-        """Whether each place of a beam lies within one of its stretches (N)."""
-        held = np.zeros(x.shape, dtype=np.bool_)
-        for row, start, end in zip(self.beam, self.start, self.end, strict=True):
-            held |= (beam == row) & (x > start + SAME_PLACE) & (x < end - SAME_PLACE)
-        return held
-
-
-def disturbed_stretches(subjects: Sequence[Subject]) -> Stretches:
-    """The stretches beside steps of all beams."""
-    rows = [
-        (beam, stretch.start, stretch.end)
-        for beam, subject in enumerate(subjects)
-        if len(subject.beam.runs) > 1 or subject.beam.runs[0].outline_end is not None
-        for stretch in disturbed(subject.beam.runs)
-    ]
-    beam, start, end = np.array(rows, dtype=np.float64).reshape(-1, 3).T
-    return Stretches(beam.astype(np.intp), start, end)
-
-
-@dataclass(frozen=True, slots=True)
-class LossTable:
-    """Where openings take away depth that carries shear, one row each (O)."""
-
-    beam: Ints
-    start: Floats
-    end: Floats
-    height: Floats
-    """[mm]; nan where shear is not rated"""
-
-
-@dataclass(frozen=True, slots=True)
 class Frame:
     """The batch as tables, before stations."""
 
@@ -117,21 +80,29 @@ class Frame:
     zones: StirrupTable
     losses: LossTable
     spans: SpanTable
+    """Of all beams, in their order (S); what is said of spans has their rows"""
+    beam_of: Ints
+    """Beam of each span (S)"""
     faces: Floats
-    """(B, 2)"""
+    """(S, 2)"""
     loads: LoadTable
+    """On spans, by the parts of their cases"""
+    parts: Parts
+    end_moments: Floats | None
+    """That its line adds at the start and the end of each span, by part [N*mm] (P, S, 2); None
+    where every span stands alone"""
     curvature: Curvature | None
     """Of beams whose stiffness varies along them, where their moments depend on it"""
     self_case: int
-    """Row of the case that self weight makes"""
+    """Part that self weight makes"""
     checked: Floats
-    """Where checks begin and end on each beam [mm] (B, 2)"""
+    """Where checks begin and end on each span [mm] (S, 2)"""
     disturbed: Stretches
     """Where nothing is checked"""
     side_loaded: Bools
-    """Members frame into the side of the beam: its loads do not compress its top (B)"""
+    """Members frame into the side of the beam: its loads do not compress its top (S)"""
     direct: Bools
-    """Each end stands on its support, which compresses it (B, 2)"""
+    """Each end stands on its support, which compresses it (S, 2)"""
     natures: tuple[frozenset[Nature], ...]
     """Of the loads on each beam, its own weight included (B)"""
 
@@ -143,18 +114,28 @@ def frame_of(subjects: Sequence[Subject], cases: Sequence[Case]) -> Frame:
         for subject in subjects
     ]
     runs, sections = run_table([subject.runs for subject in subjects], follows)
-    spans = span_table([subject.span for subject in subjects])
+    counts = np.array([len(subject.spans) for subject in subjects])
+    beam_of = np.repeat(np.arange(counts.size), counts)
+    each = [one for subject in subjects for one in subject.spans]
+    spans = span_table([one.span for one in each])
     row_of_case = {case.name: row for row, case in enumerate(cases)}
     row_of_beam = {subject.beam.key: row for row, subject in enumerate(subjects)}
-    stated = load_table(
-        [load for subject in subjects for load in subject.loads], row_of_beam, row_of_case
-    )
+    stated = [load for subject in subjects for load in subject.loads]
+    apart = [load for load in stated if load.apart]
+    if apart:
+        stated = [load for load in stated if not load.apart]
+    place, parts = _parts(subjects, cases, apart=bool(apart))
     unit_weights = np.array([subject.unit_weight.value for subject in subjects])
     body, _ = run_table([subject.weighed for subject in subjects], follows)
-    weight = _self_weight(body, spans, row_of_case[SELF], unit_weights)
+    ends = np.array([subject.ends for subject in subjects])
+    weight = self_weight(body, ends, row_of_case[SELF], unit_weights)
     members = members_of(subjects, sections)
     lengths = np.array([subject.beam.length for subject in subjects])
-    loads = join_loads(stated, weight)
+    together = join_loads(load_table(stated, row_of_beam, row_of_case), weight)
+    loads = parts.of(on_spans(together, spans, beam_of), place, apart=False)
+    if apart:
+        alone = on_spans(load_table(apart, row_of_beam, row_of_case), spans, beam_of)
+        loads = join_loads(loads, parts.of(alone, place, apart=True))
     bodies = [subject.beam.runs for subject in subjects]
     return Frame(
         members=members,
@@ -162,16 +143,46 @@ def frame_of(subjects: Sequence[Subject], cases: Sequence[Case]) -> Frame:
         zones=stirrup_table(subjects),
         losses=loss_table(subjects),
         spans=spans,
-        faces=np.array([subject.faces for subject in subjects]),
+        beam_of=beam_of,
+        faces=np.array([one.faces for one in each]),
         loads=loads,
-        curvature=curvature_of(bodies, spans, loads, members, runs),
-        self_case=row_of_case[SELF],
-        checked=checked_stretch(members, spans, lengths),
+        curvature=curvature_of(bodies, spans, beam_of, loads, members, runs),
+        parts=parts,
+        end_moments=_end_moments(subjects, parts, beam_of),
+        self_case=int(parts.first[row_of_case[SELF]]),
+        checked=checked_stretch(members, spans, beam_of, lengths),
         disturbed=disturbed_stretches(subjects),
-        side_loaded=np.array([subject.side_loaded for subject in subjects]),
-        direct=np.array([subject.direct for subject in subjects]),
+        side_loaded=np.array([subject.side_loaded for subject in subjects])[beam_of],
+        direct=np.array([one.direct for one in each]),
         natures=_natures(subjects, cases),
     )
+
+
+def _parts(
+    subjects: Sequence[Subject], cases: Sequence[Case], *, apart: bool
+) -> tuple[Ints, Parts]:
+    """Which span of its line each span is (S), and the parts of the cases."""
+    goes_on = [subject.continuity for subject in subjects]
+    places = [
+        place
+        for subject, own in zip(subjects, goes_on, strict=True)
+        for place in (own.places if own else [0] * len(subject.spans))
+    ]
+    longest = max([own.spans for own in goes_on if own], default=1)
+    return np.array(places), parts_of([case.by_spans for case in cases], longest, apart=apart)
+
+
+def _end_moments(subjects: Sequence[Subject], parts: Parts, beam_of: Ints) -> Floats | None:
+    """What lines add at the ends of spans, by part (P, S, 2); None where there is no line."""
+    if not any(subject.continuity for subject in subjects):
+        return None
+    moments = np.zeros((parts.case.size, beam_of.size, 2))
+    first = np.searchsorted(beam_of, np.arange(len(subjects))).tolist()
+    for row, subject in zip(first, subjects, strict=True):
+        if subject.continuity:
+            given = subject.continuity.in_parts(parts)
+            moments[:, row : row + given.shape[1]] = given
+    return moments
 
 
 def _natures(subjects: Sequence[Subject], cases: Sequence[Case]) -> tuple[frozenset[Nature], ...]:
@@ -182,31 +193,6 @@ def _natures(subjects: Sequence[Subject], cases: Sequence[Case]) -> tuple[frozen
     )
 
 
-def _self_weight(runs: RunTable, spans: SpanTable, case: int, unit_weights: Floats) -> LoadTable:
-    """The weight of all runs; that of the first and last reaches as far as the span does."""
-    row, start, end, area_start, area_end = weighed_parts(runs)
-    beam = runs.beam[row]
-    return self_weight_lines(
-        beam=beam,
-        case=case,
-        start=np.where(_first_of(beam), np.minimum(start, spans.start[beam]), start),
-        end=np.where(_last_of(beam), np.maximum(end, spans.end[beam]), end),
-        area_start=area_start,
-        area_end=area_end,
-        unit_weight=unit_weights[beam],
-    )
-
-
-def _first_of(beam: Ints) -> Bools:
-    """Whether each row is the first of its beam."""
-    return np.append(True, beam[1:] != beam[:-1])[: beam.size]
-
-
-def _last_of(beam: Ints) -> Bools:
-    """Whether each row is the last of its beam."""
-    return np.append(beam[1:] != beam[:-1], True)[: beam.size]
-
-
 def members_of(subjects: Sequence[Subject], sections: Sequence[Section]) -> Members:
     """The beams as arrays, one row each."""
     profiles = [profile_of(*section) for section in sections]
@@ -215,7 +201,7 @@ def members_of(subjects: Sequence[Subject], sections: Sequence[Section]) -> Memb
         concrete_strength=np.array([s.concrete_strength.value for s in subjects]),
         density_factor=np.array([s.density_factor.value for s in subjects]),
         aggregate_size=np.array([s.aggregate_size.value for s in subjects]),
-        span=np.array([s.span.end - s.span.start for s in subjects]),
+        span=np.array([min([one.length for one in s.spans]) for s in subjects]),
         **_layers(subjects),
         strips=pack_strips([profile.strips for profile in profiles]),
         overhang_left=flanges[:, 0],
@@ -269,32 +255,8 @@ def _layers(subjects: Sequence[Subject]) -> dict[str, Any]:
     }
 
 
-def stirrup_table(subjects: Sequence[Subject]) -> StirrupTable:
-    """The stirrup zones of all beams; a beam of which no source speaks has one of unknown area."""
-    rows: list[tuple[float, ...]] = []
-    for beam, subject in enumerate(subjects):
-        if not subject.stirrups_known:
-            rows.append((beam, -np.inf, np.inf, np.inf, np.nan, np.nan))
-        for zone, strength in zip(subject.stirrups, subject.stirrup_yield, strict=True):
-            area = np.nan if zone.legs is None else zone.legs * zone.leg_area
-            rows.append((beam, zone.start, zone.end, zone.spacing, area, strength.value))
-    columns = np.array(rows, dtype=np.float64).reshape(-1, 6).T
-    return StirrupTable(columns[0].astype(np.intp), *columns[1:])
-
-
-def loss_table(subjects: Sequence[Subject]) -> LossTable:
-    """Where openings take away depth that carries shear, on all beams."""
-    rows = [
-        (beam, loss.start, loss.end, loss.height)
-        for beam, subject in enumerate(subjects)
-        for loss in (subject.body.losses if subject.body else ())
-    ]
-    columns = np.array(rows, dtype=np.float64).reshape(-1, 4).T
-    return LossTable(columns[0].astype(np.intp), *columns[1:])
-
-
 def make_station_arrays(
-    frame: Frame, beam: Ints, x: Floats, side: Ints
+    frame: Frame, span: Ints, x: Floats, side: Ints
 ) -> tuple[Members, Stations]:
     """Look up section, stirrups and openings at every station.
 
@@ -302,7 +264,7 @@ def make_station_arrays(
     ----------
     frame
         Sections and stirrups along the beams, and the faces of their supports.
-    beam, x, side
+    span, x, side
         The stations (N).
 
     Returns
@@ -310,26 +272,27 @@ def make_station_arrays(
     tuple
         The members, with a section for every station in a taper, and the stations.
     """
-    area, spacing, strength = _stirrups_at(beam, x, side, frame.zones)
+    beam = frame.beam_of[span]
+    area, spacing, strength = stirrups_at(beam, x, side, frame.zones)
     runs = frame.runs
     row = run_at(runs, beam, x, side)
     members, section = sections_at(frame.members, runs, row, x)
     return members, Stations(
         beam=beam,
         section=section,
-        shear_loss=_losses_at(beam, x, side, frame.losses),
+        shear_loss=losses_at(beam, x, side, frame.losses),
         x=x,
         side=side,
         stirrup_area=area,
         stirrup_spacing=spacing,
         stirrup_yield=strength,
-        inside=_between(x, frame.faces[beam]),
+        inside=_between(x, frame.faces[span]),
         chords=chords_at(runs, row),
     )
 
 
-def checked_stretch(members: Members, spans: SpanTable, lengths: Floats) -> Floats:
-    """Where the checks of each beam begin and end [mm] (B, 2).
+def checked_stretch(members: Members, spans: SpanTable, beam_of: Ints, lengths: Floats) -> Floats:
+    """Where the checks of each span begin and end [mm] (S, 2).
 
     The span, as far as the beam's body goes (0 to its length); but at a free end whose bars stop
     in the end cover, the last END_COVER at most is plain concrete, and checks end a little inside
@@ -339,11 +302,11 @@ def checked_stretch(members: Members, spans: SpanTable, lengths: Floats) -> Floa
     present = members.layer_area > 0.0
     if members.layer_place is not None:
         present &= members.layer_place == OWN
-    first = np.where(present, members.layer_start, np.inf).min(axis=1)
-    last = np.where(present, members.layer_end, -np.inf).max(axis=1)
+    first = np.where(present, members.layer_start, np.inf).min(axis=1)[beam_of]
+    last = np.where(present, members.layer_end, -np.inf).max(axis=1)[beam_of]
     start_tip = (spans.start_kind == FREE) & (first - spans.start <= END_COVER)
     end_tip = (spans.end_kind == FREE) & (spans.end - last <= END_COVER)
-    start, end = np.maximum(spans.start, 0.0), np.minimum(spans.end, lengths)
+    start, end = np.maximum(spans.start, 0.0), np.minimum(spans.end, lengths[beam_of])
     return np.stack(
         [
             np.where(start_tip, np.maximum(start, first + _INSIDE_LAST_BAR), start),
@@ -354,7 +317,7 @@ def checked_stretch(members: Members, spans: SpanTable, lengths: Floats) -> Floa
 
 
 def within(stations: StationTable, stretch: Floats) -> StationTable:
-    """The stations that lie on a stretch of each beam (B, 2); at its ends those just inside."""
+    """The stations that lie on a stretch of each span (S, 2); at its ends those just inside."""
     low, high = stretch[stations.beam].T
     x, side = stations.x, stations.side
     first, last = np.abs(x - low) <= SAME_PLACE, np.abs(x - high) <= SAME_PLACE
@@ -367,45 +330,3 @@ def within(stations: StationTable, stretch: Floats) -> StationTable:
 def _between(x: Floats, faces: Floats) -> Bools:
     tolerance = 1e-6
     return np.asarray((x >= faces[:, 0] - tolerance) & (x <= faces[:, 1] + tolerance))
-
-
-def _losses_at(beam: Ints, x: Floats, side: Ints, losses: LossTable) -> Floats:
-    """Depth that openings take away at each station [mm]: of all that hold it together."""
-    lost = np.zeros(x.size)
-    if losses.beam.size:
-        station, row = _held(beam, x, side, losses, np.arange(losses.beam.size))
-        np.add.at(lost, station, losses.height[row])
-    return lost
-
-
-def _held(
-    beam: Ints, x: Floats, side: Ints, stretches: StirrupTable | LossTable, rows: Ints
-) -> tuple[Ints, Ints]:
-    """Every pair of a station and a stretch of its beam that holds it, in the order of the
-    stretches' rows."""
-    order = np.argsort(beam, kind="stable")
-    first, last = (
-        np.searchsorted(beam[order], stretches.beam[rows], side=end) for end in ("left", "right")
-    )
-    lengths = last - first
-    station = order[
-        np.repeat(first - np.cumsum(lengths) + lengths, lengths) + np.arange(lengths.sum())
-    ]
-    row = np.repeat(rows, lengths)
-    place = x[station] + 1e-6 * side[station]
-    held = (place >= stretches.start[row] - 1e-9) & (place <= stretches.end[row] + 1e-9)
-    return station[held], row[held]
-
-
-def _stirrups_at(
-    beam: Ints, x: Floats, side: Ints, zones: StirrupTable
-) -> tuple[Floats, Floats, Floats]:
-    """Area, spacing and yield strength at each station: the weakest of the zones that hold it."""
-    area, spacing = np.zeros(x.size), np.full(x.size, np.inf)
-    strength = np.full(x.size, 400.0)
-    ratio = zones.area / zones.spacing
-    strongest_first = np.argsort(np.where(np.isnan(ratio), -1.0, ratio), kind="stable")[::-1]
-    station, zone = _held(beam, x, side, zones, strongest_first)
-    area[station], spacing[station] = zones.area[zone], zones.spacing[zone]  # the last one stays
-    strength[station] = zones.yield_strength[zone]
-    return area, spacing, strength

@@ -84,12 +84,23 @@ def _yields(name: str, label: str, given: Sequence[Given]) -> list[BasisItem]:
 
 
 def _standing(subject: Subject) -> list[BasisItem]:
-    span = subject.span
+    spans, source = subject.spans, subject.span_source
+    inner = [each.span.end_support for each in spans[:-1]]
+    lengths = [BasisItem("Span", "span", spans[0].length, "length", source)]
+    if inner:
+        lengths = [
+            BasisItem(f"Span{number}", f"span {number}", each.length, "length", source)
+            for number, each in enumerate(spans, start=1)
+        ]
     return [
-        BasisItem("Span", "span", span.end - span.start, "length", subject.span_source),
+        *lengths,
         *([_statements(subject)] if subject.statements else []),
-        _support("StartSupport", "support at the start", span.start_support),
-        _support("EndSupport", "support at the end", span.end_support),
+        _support("StartSupport", "support at the start", spans[0].span.start_support),
+        *(
+            _support(f"InnerSupport{number}", f"inner support {number}", support)
+            for number, support in enumerate(inner, start=1)
+        ),
+        _support("EndSupport", "support at the end", spans[-1].span.end_support),
     ]
 
 

@@ -57,6 +57,8 @@ class Batch:
 
     subjects: tuple[Subject, ...]
     stations: StationTable
+    span: Ints
+    """Of each station, counted through all beams (N)"""
     first: Ints
     """First station of each beam, and the number of stations (B + 1)"""
     prepared: Any
@@ -194,6 +196,7 @@ def rate_options(
         yield Batch(
             subjects=tuple(subjects),
             stations=under.stations,
+            span=under.effects.cases.beam,
             first=under.stations.first_rows(len(subjects)),
             prepared=prepared,
             demand=under.acting.total,
@@ -201,7 +204,7 @@ def rate_options(
             factors={cases[row].name: least for row, least in lowered.items()},
             places=where,
             envelope=_envelope(under, by_state([*steady, *found])),
-            uplift=uplift_of(under.effects, frame.spans, {cases[row].name: row for row in lowered}),
+            uplift=uplift_of(under.effects, frame, {cases[row].name: row for row in lowered}),
             notes=standard.notes(prepared),
             basis=standard.basis(prepared),
             between=join_places(

@@ -79,7 +79,7 @@ def distinct_elements(effects: Effects, acting: Demands, beam: Ints) -> Elements
         Beam of each station (N), ascending from 0, every beam with a station.
     """
     arrangements, stations = acting.total.moment.shape[-2:]
-    kept = _kept(effects, acting, beam).reshape(-1, stations)
+    kept = _kept(effects, acting).reshape(-1, stations)
     station, row = np.nonzero(np.ascontiguousarray(kept.T))
     element = row * stations + station
     of_combination = row // arrangements * stations + station
@@ -119,7 +119,7 @@ def ask_nothing(elements: Elements, disturbed: Bools) -> None:
             numbers[: len(NUMBERS) - len(_PEAKS), rows] = 0.0
 
 
-def _kept(effects: Effects, acting: Demands, beam: Ints) -> Bools:
+def _kept(effects: Effects, acting: Demands) -> Bools:
     """Whether an arrangement differs from all earlier ones that bound as much (C, A, N).
 
     Two arrangements of a combination in which the same cases have their greater factors are one;
@@ -138,13 +138,15 @@ def _kept(effects: Effects, acting: Demands, beam: Ints) -> Bools:
         apart[:, effects.idle] = _differ(numbers[:, :, later], numbers[:, :, earlier])
         apart |= apart.take(acting.critical, axis=1, mode="clip")
         kept[:, later] &= apart
-    bounded = _bounded(demands, starts(beam))
+    first = starts(effects.cases.beam)
+    span = np.repeat(np.arange(first.size), np.diff(first, append=effects.cases.beam.size))
+    bounded = _bounded(demands, first)
     for later, earlier in _pairs(combinations):
         if bounded[later, earlier].any():
             apart = _unlike_factors(effects, later, earlier)
             apart[:, effects.idle] = _differ(numbers[:, later], numbers[:, earlier])
             apart |= apart.take(acting.critical, axis=1, mode="clip")
-            kept[later] &= apart | ~bounded[later, earlier][beam]
+            kept[later] &= apart | ~bounded[later, earlier][span]
     return kept
 
 
@@ -186,8 +188,8 @@ def _unlike_factors(effects: Effects, later: int, earlier: int) -> Bools:
 
 
 def _bounded(demands: Sequence[Demand], first: Ints) -> Bools:
-    """Whether the peaks of a combination are no greater than those of another on a beam, whatever
-    a case is multiplied by (C, C, B); ``first`` is the first station of each beam."""
+    """Whether the peaks of a combination are no greater than those of another on a span, whatever
+    a case is multiplied by (C, C, S); ``first`` is the first station of each span."""
     total, *shares = demands
     bounded = np.ones((len(total.moment), len(total.moment), first.size), dtype=np.bool_)
     for name in _PEAKS:

@@ -3,15 +3,21 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 
 from ifccheck.analysis.combinations import factor_array
 from ifccheck.analysis.effects import Demands, Effects, combine, demands
 from ifccheck.analysis.loads import LINE
-from ifccheck.analysis.spans import FREE
-from ifccheck.analysis.statics import Solved, effects_at, join_effects, solve
+from ifccheck.analysis.spans import FREE, by_spans
+from ifccheck.analysis.statics import (
+    Solved,
+    effects_at,
+    join_effects,
+    solve,
+    with_end_moments,
+)
 from ifccheck.analysis.stations import (
     NOWHERE,
     Places,
@@ -38,12 +44,13 @@ class Loaded:
     frame: Frame
     solved: Solved
     stations: StationTable
+    """With the rows of the beams; the effects know the span of each"""
     members: Members
     """With a section for every station in a taper"""
     arrays: Stations
     effects: Effects
     factors: Floats
-    """Unfavourable and favourable factor of each case in each combination (C, K, 2)"""
+    """Unfavourable and favourable factor of each part in each combination (C, P, 2)"""
     acting: Demands
     elements: Elements
     disturbed: Bools
@@ -70,48 +77,55 @@ def loaded(
     combinations
         Strength combinations, exclusions already worked out.
     more
-        Places at which stations are wanted besides.
+        Places on beams at which stations are wanted besides.
     """
-    factors = factor_array(combinations, cases)
+    factors = factor_array(combinations, cases)[:, frame.parts.case]
     critical = _critical_sections(frame, standard)
-    solved = solved_frame(frame, len(cases))
-    effects, stations = _effects(frame, solved, critical, factors, more)
+    solved = solved_frame(frame)
+    effects, of_spans = _effects(frame, solved, critical, factors, more)
     acting = demands(
         effects,
-        critical_rows(stations, critical[:, 0], critical[:, 1]),
+        critical_rows(of_spans, critical[:, 0], critical[:, 1]),
         [row for row, case in enumerate(cases) if case.rated],
         unbounded=frame.side_loaded,
+        parts=frame.parts,
     )
-    arrays = make_station_arrays(frame, stations.beam, stations.x, stations.side)
+    arrays = make_station_arrays(frame, of_spans.beam, of_spans.x, of_spans.side)
+    stations = replace(of_spans, beam=arrays[1].beam)
     disturbed = frame.disturbed.hold(stations.beam, stations.x)
     elements = distinct_elements(effects, acting, stations.beam)
     ask_nothing(elements, disturbed)
     return Loaded(frame, solved, stations, *arrays, effects, factors, acting, elements, disturbed)
 
 
-def solved_frame(frame: Frame, cases: int) -> Solved:
-    """Reactions and end moments of every case on every beam."""
-    solved = solve(frame.spans, frame.loads, cases)
-    return with_varying_stiffness(solved, frame.curvature) if frame.curvature else solved
+def solved_frame(frame: Frame) -> Solved:
+    """Reactions and end moments of every part of every case on every span."""
+    solved = solve(frame.spans, frame.loads, frame.parts.case.size)
+    if frame.curvature:
+        solved = with_varying_stiffness(solved, frame.curvature)
+    if frame.end_moments is not None:
+        start, end = np.moveaxis(frame.end_moments, -1, 0)
+        solved = with_end_moments(solved, start, end, np.any(start != 0.0, axis=0))
+    return solved
 
 
 def _critical_sections(frame: Frame, standard: Standard) -> Floats:
-    """x of the critical section for shear at either end of each beam [mm] (B, 2).
+    """x of the critical section for shear at either end of each span [mm] (S, 2).
 
     nan where nearer stations must be checked with their own shear: a free end, an end whose
     reaction does not compress it, or a concentrated load or an opening between the face and that
     section.
     """
-    beams = len(frame.faces)
-    beam = np.repeat(np.arange(beams), 2)
-    side = np.tile([1, -1], beams)
-    at_faces = make_station_arrays(frame, beam, frame.faces.ravel(), side)
+    spans = len(frame.faces)
+    span = np.repeat(np.arange(spans), 2)
+    side = np.tile([1, -1], spans)
+    at_faces = make_station_arrays(frame, span, frame.faces.ravel(), side)
     distance = standard.critical_distance(*at_faces)
-    if frame.runs.beam.size > beams or frame.runs.tapers:
+    if frame.runs.beam.size > frame.runs.beam[-1] + 1 or frame.runs.tapers:
         reach = np.where(np.isnan(distance), 0.0, distance)
-        there = make_station_arrays(frame, beam, frame.faces.ravel() + reach * side, side)
+        there = make_station_arrays(frame, span, frame.faces.ravel() + reach * side, side)
         distance = np.minimum(distance, standard.critical_distance(*there))
-    distance = distance.reshape(beams, 2)
+    distance = distance.reshape(spans, 2)
     critical = frame.faces + distance * np.array([1.0, -1.0])
     held = np.stack([frame.spans.start_kind, frame.spans.end_kind], axis=-1) != FREE
     middle = frame.faces.mean(axis=1, keepdims=True)
@@ -122,7 +136,7 @@ def _critical_sections(frame: Frame, standard: Standard) -> Floats:
 
 
 def _concentrated(frame: Frame, critical: Floats) -> Bools:
-    """Whether a concentrated load or moment lies between the face and the section (B, 2).
+    """Whether a concentrated load or moment lies between the face and the section (S, 2).
 
     A line load is one where it is shorter than twice the distance between them, or than a
     quarter of the distance between the faces: it comes down as a strut of its own. Self weight,
@@ -143,20 +157,23 @@ def _concentrated(frame: Frame, critical: Floats) -> Bools:
 
 
 def _opened(frame: Frame, critical: Floats) -> Bools:
-    """Whether an opening begins to take depth between the face and the section (B, 2)."""
+    """Whether an opening begins to take depth between the face and the section (S, 2)."""
     found = np.zeros(critical.shape, dtype=np.bool_)
-    losses = frame.losses
-    (first, last), (near, far) = frame.faces[losses.beam].T, critical[losses.beam].T
-    found[losses.beam[(losses.start > first) & (losses.start <= near)], 0] = True
-    found[losses.beam[(losses.end < last) & (losses.end >= far)], 1] = True
+    row, span = by_spans(frame.beam_of, frame.losses.beam)
+    start, end = frame.losses.start[row], frame.losses.end[row]
+    (first, last), (near, far) = frame.faces[span].T, critical[span].T
+    found[span[(start > first) & (start <= near)], 0] = True
+    found[span[(end < last) & (end >= far)], 1] = True
     return found
 
 
 def _effects(
     frame: Frame, solved: Solved, critical: Floats, factors: Floats, more: Places
 ) -> tuple[Effects, StationTable]:
-    """Effects at stations that include every place where a greatest moment turns."""
-    fixed = join_places(*_fixed_places(frame, critical), more)
+    """Effects at stations that include every place where a greatest moment turns, and the stations
+    with the rows of the spans."""
+    along = _on_spans(join_places(*_fixed_places(frame), more), frame)
+    fixed = join_places(*_places_of_spans(frame, critical), along)
     stations = within(make_stations(frame.spans, frame.loads, fixed), frame.checked)
     found = effects_at(solved, stations, deflections=False)
     beam, x = turning_places(found, factors).places()
@@ -165,15 +182,29 @@ def _effects(
     return combine(join_effects(found, there, rows), factors), stations
 
 
-def _fixed_places(frame: Frame, critical: Floats) -> list[Places]:
-    """Everything but loads at which something changes along the beams."""
-    beams = np.arange(critical.shape[0])
+def _on_spans(found: Places, frame: Frame) -> Places:
+    """Places on beams as places on their spans; those within none of them are left out later."""
+    if frame.beam_of.size == frame.beam_of[-1] + 1:
+        return found
+    row, span = by_spans(frame.beam_of, found.beam)
+    return Places(span, found.x[row], found.two_sided[row])
+
+
+def _places_of_spans(frame: Frame, critical: Floats) -> list[Places]:
+    """Where spans are held, and their shear is critical."""
+    span = np.repeat(np.arange(critical.shape[0]), 2)
+    return [
+        places(span, frame.faces.ravel(), two_sided=True),
+        places(span, frame.checked.ravel(), two_sided=False),
+        places(span, critical.ravel(), two_sided=False),
+    ]
+
+
+def _fixed_places(frame: Frame) -> list[Places]:
+    """Everything but loads and supports at which something changes along the beams."""
     m, runs, zones, losses = frame.members, frame.runs, frame.zones, frame.losses
     row, layer = np.nonzero(m.layer_area > 0.0)
     edges = [
-        (np.repeat(beams, 2), frame.faces.ravel(), True),
-        (np.repeat(beams, 2), frame.checked.ravel(), False),
-        (np.repeat(beams, 2), critical.ravel(), False),
         (runs.beam, runs.start, True),
         (runs.beam, runs.end, True),
         (row, m.layer_start[row, layer], True),

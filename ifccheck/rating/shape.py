@@ -7,9 +7,9 @@ from collections.abc import Iterator, Sequence
 from functools import lru_cache
 from typing import NamedTuple
 
-from ifccheck.beam import Beam, Outline, Reason, Run, Span
+from ifccheck.beam import Beam, Outline, RatedSpan, Reason, Run
 from ifccheck.mechanics.inclination import inclination_of
-from ifccheck.rating.disturbed import depth_of, disturbed, undisturbed_length
+from ifccheck.rating.disturbed import Disturbed, depth_of, disturbed, undisturbed_length
 from ifccheck.standards import Standard
 from ifccheck.units import show, show_ratio
 
@@ -20,7 +20,7 @@ LEAST_LENGTH = 150.0
 
 
 def shape_reasons(
-    runs: Sequence[Run], span: Span, faces: tuple[float, float], standard: Standard
+    runs: Sequence[Run], spans: Sequence[RatedSpan], standard: Standard
 ) -> Iterator[Reason]:
     """Why a beam of such a shape is not rated, or not everywhere.
 
@@ -28,27 +28,31 @@ def shape_reasons(
     ----------
     runs
         Of the beam, at least one.
-    span, faces
-        Where it spans, and the faces of its supports [mm].
+    spans
+        That it makes, at least one.
     standard
         Whose beam theory is asked for.
     """
-    yield from deep_member(runs, faces, standard)
+    yield from deep_member(runs, spans, standard)
     stretches = disturbed(runs)
-    start, end = max(span.start, 0.0), min(span.end, runs[-1].end)
-    left = undisturbed_length(stretches, start, end)
-    if left < max(LEAST_PART * (span.end - span.start), LEAST_LENGTH):
+    if any(_nothing_left(stretches, each, runs[-1].end) for each in spans):
         yield Reason("steps in the section leave no stretch of it to be rated")
     for stretch in stretches:
         yield Reason(stretch.text, blocking=False)
 
 
+def _nothing_left(stretches: Sequence[Disturbed], each: RatedSpan, length: float) -> bool:
+    start, end = max(each.span.start, 0.0), min(each.span.end, length)
+    left = undisturbed_length(stretches, start, end)
+    return left < max(LEAST_PART * each.length, LEAST_LENGTH)
+
+
 def deep_member(
-    runs: Sequence[Run], faces: tuple[float, float], standard: Standard
+    runs: Sequence[Run], spans: Sequence[RatedSpan], standard: Standard
 ) -> Iterator[Reason]:
     """Why a beam, with what it is cast with, is too deep for its span; see ``shape_reasons``."""
     depth = max(_greatest_depth(run) for run in runs)
-    clear = faces[1] - faces[0]
+    clear = min(last - first for _, (first, last), _ in spans)
     if clear < standard.least_slenderness * depth:
         yield Reason(
             f"deep member: its clear span of {show(clear, 'length')} is"

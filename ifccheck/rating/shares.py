@@ -10,8 +10,9 @@ import numpy as np
 from ifccheck.analysis.combinations import factor_array
 from ifccheck.analysis.effects import Effects, case_share, combine
 from ifccheck.analysis.loads import LoadTable
+from ifccheck.analysis.parts import Parts
 from ifccheck.analysis.statics import CaseEffects, effects_at
-from ifccheck.beam import SELF, Case
+from ifccheck.beam import Case
 from ifccheck.mechanics.arrays import Floats, Ints
 from ifccheck.rating.assembly import frame_of
 from ifccheck.rating.batch import Batch
@@ -37,10 +38,12 @@ class Arising:
     cases: tuple[Case, ...]
     shares: tuple[Shares, ...]
     """At the governing place of each limit state"""
+    beam_of: Ints
+    """Beam of each span (S)"""
     reactions: Floats
-    """Unfactored, upward, at the start and the end of each span [N] (K, B, 2)"""
+    """Unfactored, upward, at the start and the end of each span [N] (K, S, 2)"""
     end_moments: Floats
-    """Unfactored, just inside the ends of each span [N*mm] (K, B, 2)"""
+    """Unfactored, just inside the ends of each span [N*mm] (K, S, 2)"""
     self_weight: LoadTable
 
 
@@ -55,22 +58,25 @@ def arising(batch: Batch, cases: Sequence[Case]) -> Arising:
         The cases (K) that they were rated for, in the same order.
     """
     frame = frame_of(batch.subjects, cases)
-    effects = effects_at(solved_frame(frame, len(cases)), batch.stations, deflections=False)
-    factors = factor_array(batch.places.combinations, cases)
-    weight = [row for row, case in enumerate(cases) if case.name == SELF]
+    stations = replace(batch.stations, beam=batch.span)
+    effects = effects_at(solved_frame(frame), stations, deflections=False)
+    factors = factor_array(batch.places.combinations, cases)[:, frame.parts.case]
     return Arising(
         cases=tuple(cases),
         shares=tuple(
-            _shares(effects, factors, batch.places.arrangements, found.worst.shown)
+            _shares(effects, factors, batch.places.arrangements, found.worst.shown, frame.parts)
             for found in batch.states
         ),
-        reactions=effects.reactions,
-        end_moments=effects.end_moments,
-        self_weight=frame.loads.take(np.flatnonzero(np.isin(frame.loads.case, weight))),
+        beam_of=frame.beam_of,
+        reactions=frame.parts.whole(effects.reactions),
+        end_moments=frame.parts.whole(effects.end_moments),
+        self_weight=frame.loads.take(np.flatnonzero(frame.loads.case == frame.self_case)),
     )
 
 
-def _shares(effects: CaseEffects, factors: Floats, arrangements: int, shown: Ints) -> Shares:
+def _shares(
+    effects: CaseEffects, factors: Floats, arrangements: int, shown: Ints, parts: Parts
+) -> Shares:
     shape = (len(factors), arrangements, effects.x.size)
     combination, arrangement, station = np.unravel_index(shown, shape)
     there = replace(
@@ -82,15 +88,25 @@ def _shares(effects: CaseEffects, factors: Floats, arrangements: int, shown: Int
     )
     combined = combine(there, factors)
     at = (combination, arrangement, np.arange(shown.size))
-    factor = [_factor(combined, case, at) for case in range(len(there.moment))]
-    return Shares(np.array(factor), there.moment, there.shear)
+    found = [_share(combined, parts.rows(case), at) for case in range(parts.first.size - 1)]
+    return Shares(*(np.array(column) for column in zip(*found, strict=True)))
 
 
-def _factor(combined: Effects, case: int, at: tuple[Ints, ...]) -> Floats:
-    """The factor of a case at each place: factored over unfactored effect, nan without any."""
-    moment, shear = (share[at] for share in case_share(combined, case))
-    alone = combined.cases.moment[case], combined.cases.shear[case]
-    return np.where(alone[0] != 0.0, _ratio(moment, alone[0]), _ratio(shear, alone[1]))
+def _share(combined: Effects, rows: Ints, at: tuple[Ints, ...]) -> tuple[Floats, Floats, Floats]:
+    """The factor of a case at each place, and its moment and shear unfactored: of those of its
+    parts that act there, where any does.
+
+    The factor is factored over unfactored effect, nan without any.
+    """
+    shares = np.array([[each[at] for each in case_share(combined, row)] for row in rows.tolist()])
+    alone = np.stack([combined.cases.moment[rows], combined.cases.shear[rows]], axis=1)
+    acts = np.any(shares != 0.0, axis=1, keepdims=True)
+    if len(rows) > 1:
+        alone = np.where(acts | ~acts.any(axis=0), alone, 0.0)
+    moment, shear = alone.sum(axis=0)
+    factored = shares.sum(axis=0)
+    factor = np.where(moment != 0.0, _ratio(factored[0], moment), _ratio(factored[1], shear))
+    return factor, moment, shear
 
 
 def _ratio(factored: Floats, alone: Floats) -> Floats:

@@ -62,8 +62,7 @@ def _words(subject: Subject, face: Face, bars: Sequence[Bars], x: float) -> str:
 
 def _near_support(subject: Subject, x: float) -> str:
     """What to state where the place is within a depth of the end of the span."""
-    span = subject.span
-    end = min((span.start, span.end), key=lambda place: abs(place - x))
+    end = min(subject.ends, key=lambda place: abs(place - x))
     low, high = _extent(subject, x)
     if abs(end - x) > high - low:
         return ""

@@ -7,11 +7,11 @@ from collections.abc import Sequence
 import numpy as np
 
 from ifccheck.analysis.loads import LoadTable
-from ifccheck.analysis.spans import SpanTable
+from ifccheck.analysis.spans import SpanTable, by_spans
 from ifccheck.analysis.stations import make_stations, places
 from ifccheck.analysis.stiffness import Curvature, indeterminate, places_between
 from ifccheck.beam import Run
-from ifccheck.mechanics.arrays import Floats, Members
+from ifccheck.mechanics.arrays import Floats, Ints, Members
 from ifccheck.mechanics.width_profile import (
     area_below,
     first_moment_below,
@@ -32,6 +32,7 @@ def varies(runs: Sequence[Run]) -> bool:
 def curvature_of(
     bodies: Sequence[Sequence[Run]],
     spans: SpanTable,
+    beam_of: Ints,
     loads: LoadTable,
     members: Members,
     runs: RunTable,
@@ -45,23 +46,21 @@ def curvature_of(
     bodies
         The runs of each beam as it was read (B): with one outline it has one stiffness, whatever
         openings or slabs do to what is rated of it.
-    spans, loads
-        Of the beams.
+    spans, beam_of, loads
+        Spans of the beams, the beam of each (S), and loads on them.
     members, runs
         Sections, and where the beams have which.
     """
-    wanted = np.array([varies(body) for body in bodies]) & indeterminate(spans)
+    wanted = np.array([varies(body) for body in bodies])[beam_of] & indeterminate(spans)
     if not wanted.any():
         return None
-    changes = places(
-        np.concatenate([runs.beam, runs.beam]), np.concatenate([runs.start, runs.end]),
-        two_sided=False,
-    )  # fmt: skip
-    beam, x, length = places_between(make_stations(spans, loads, changes))
-    kept = wanted[beam]
-    beam, x, length = beam[kept], x[kept], length[kept]
-    with_sections, section = sections_at(members, runs, run_at(runs, beam, x), x)
-    return Curvature(beam, x, length / second_moments(with_sections.strips[section]))
+    row, span = by_spans(beam_of, np.concatenate([runs.beam, runs.beam]))
+    changes = places(span, np.concatenate([runs.start, runs.end])[row], two_sided=False)
+    span, x, length = places_between(make_stations(spans, loads, changes))
+    kept = wanted[span]
+    span, x, length = span[kept], x[kept], length[kept]
+    with_sections, section = sections_at(members, runs, run_at(runs, beam_of[span], x), x)
+    return Curvature(span, x, length / second_moments(with_sections.strips[section]))
 
 
 def second_moments(strips: Floats) -> Floats:

@@ -3,21 +3,50 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from typing import NamedTuple
 
+import numpy as np
+
+from ifccheck.analysis.parts import Parts
 from ifccheck.beam import (
     Bars,
     Beam,
     Face,
     Given,
-    Line,
     Load,
     RatedBody,
+    RatedSpan,
     Reason,
     Remark,
     Run,
-    Span,
     Stirrups,
 )
+from ifccheck.mechanics.arrays import Floats
+
+
+class Continuity(NamedTuple):
+    """How the spans of a beam go on in a line of several."""
+
+    places: tuple[int, ...]
+    """Which span of its line each span of the beam is, from 0"""
+    spans: int
+    """Of the line"""
+    parts: Parts
+    """Of the cases, as the line was solved by them"""
+    moments: Floats
+    """At the start and the end of each span of the beam, of every part [N*mm] (P, spans, 2)"""
+
+    def in_parts(self, parts: Parts) -> Floats:
+        """The moments by other parts of the same cases, of lines at least as long and, where these
+        have loads apart, with such."""
+        found = np.zeros((parts.case.size, *self.moments.shape[1:]))
+        for case in range(parts.first.size - 1):
+            own, other = self.parts.rows(case), parts.rows(case)
+            for apart in range(2 if own.size > self.parts.places else 1):
+                few = min(self.spans, own.size)
+                here = own[apart * self.parts.places :][:few]
+                found[other[apart * parts.places :][:few]] = self.moments[here]
+        return found
 
 
 @dataclass(frozen=True, slots=True)
@@ -29,7 +58,6 @@ class Subject:
     """
 
     beam: Beam
-    line: Line
     bars: tuple[Bars, ...]
     stirrups: tuple[Stirrups, ...]
     stirrups_known: bool
@@ -37,13 +65,10 @@ class Subject:
     silent: tuple[Face, ...]
     """Faces of whose bars no source speaks on some stretch: counted as none"""
     reinforcement_source: str
-    faces: tuple[float, float]
-    """x of the faces of the two supports [mm]"""
+    spans: tuple[RatedSpan, ...]
+    """That the beam makes, in their order along it"""
     span_source: str
-    """Where the span runs from and to, or who states it"""
-    direct: tuple[bool, bool]
-    """Whether the reaction compresses the start and the end: a bearing from below or a column,
-    not the side of another beam"""
+    """Where they run from and to, or who states it"""
     side_loaded: bool
     """Whether other members frame into its side between the supports"""
     loads: tuple[Load, ...]
@@ -65,6 +90,8 @@ class Subject:
     """Bars of slabs that lie within its flange; where they count they are among ``bars`` too"""
     slab_bars_from: str = ""
     """Where the brief says that they are anchored; empty where they do not count"""
+    continuity: Continuity | None = None
+    """None where each of its spans stands alone"""
     body: RatedBody | None = None
     """What is rated of the beam where that is not its body alone; None where it is"""
 
@@ -79,9 +106,9 @@ class Subject:
         return self.body.weighed if self.body else self.beam.runs
 
     @property
-    def span(self) -> Span:
-        """The span that the beam makes."""
-        return self.line.spans[0]
+    def ends(self) -> tuple[float, float]:
+        """x of the start of its first span and of the end of its last [mm]."""
+        return self.spans[0].span.start, self.spans[-1].span.end
 
 
 @dataclass(frozen=True, slots=True)

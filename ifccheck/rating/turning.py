@@ -55,24 +55,27 @@ def with_turns(factors: Factors, growth: Growth, standard: Standard, options: Op
     """
     moving = np.isfinite(factors.factor) & (factors.factor > 0.0)
     for _ in range(MOST_ROUNDS):
-        beam, x = _turns(factors.factor, moving, growth)
-        rated = ~growth.under.frame.disturbed.hold(beam, x)
-        beam, x = beam[rated], x[rated]
-        if not beam.size:
+        span, x = _turns(factors.factor, moving, growth)
+        rated = ~growth.under.frame.disturbed.hold(growth.under.frame.beam_of[span], x)
+        span, x = span[rated], x[rated]
+        if not span.size:
             return factors
-        lower = _factors_at(beam, x, factors, growth, standard, options)
+        lower = _factors_at(span, x, factors, growth, standard, options)
         moving = lower.factor < factors.factor * (1.0 - SETTLED)
         factors = lower
     return factors
 
 
 def _turns(factor: Floats, moving: Bools, growth: Growth) -> tuple[Ints, Floats]:
-    """Where the moments of the moving beams turn with the case multiplied, and may be critical."""
+    """Where on spans the moments of the moving beams turn with the case multiplied, and may be
+    critical."""
     cases, factors = growth.under.effects.cases, growth.under.factors
-    multiple = np.where(moving, factor, 0.0)[cases.beam]
-    grown = scaled_case(cases, growth.case, multiple)
+    frame = growth.under.frame
+    grown, multiple = cases, np.where(moving, factor, 0.0)[growth.under.stations.beam]
+    for row in frame.parts.rows(growth.case).tolist():
+        grown = scaled_case(grown, row, multiple)
     turns = turning_places(grown, factors, alone=False)
-    turns = turns.take(moving[turns.beam])
+    turns = turns.take(moving[frame.beam_of[turns.beam]])
     return turns.take(_critical(turns, growth.found)).places()
 
 
@@ -91,7 +94,7 @@ def _critical(turns: Turns, found: Sequence[Found]) -> Bools:
 
 
 def _factors_at(
-    beam: Ints,
+    span: Ints,
     x: Floats,
     found: Factors,
     growth: Growth,
@@ -99,13 +102,13 @@ def _factors_at(
     options: Options,
 ) -> Factors:
     """The factors, lowered to what holds at some more places."""
-    under, side = growth.under, np.zeros_like(beam)
-    frame, stations = under.frame, StationTable(beam, x, side)
+    under, side = growth.under, np.zeros_like(span)
+    frame, stations = under.frame, StationTable(span, x, side)
     cases = effects_at(under.solved, stations, deflections=False)
     effects = combine(cases, under.factors)
-    acting = demands(effects, np.arange(x.size), (growth.case,))
-    arrays = make_station_arrays(frame, beam, x, side)
-    beams, row = np.unique(beam, return_inverse=True)
+    acting = demands(effects, np.arange(x.size), (growth.case,), parts=frame.parts)
+    arrays = make_station_arrays(frame, span, x, side)
+    beams, row = np.unique(arrays[1].beam, return_inverse=True)
     elements = distinct_elements(effects, acting, row)
     prepared = standard.prepare(*arrays, options)
     there = [
@@ -122,9 +125,9 @@ def _factors_at(
 def _lowered(found: Factors, lower: Factors, beams: Ints, growth: Growth, places: int) -> Factors:
     """The lesser factors of both; an element is named after the station before its place."""
     better = lower.factor < found.factor[beams]
-    changed, cases = beams[better], growth.under.effects.cases
-    station = rows_before(cases.beam, cases.x, changed, lower.x[better])
-    element = lower.element[better] // places * cases.x.size + station
+    changed, stations = beams[better], growth.under.stations
+    station = rows_before(stations.beam, stations.x, changed, lower.x[better])
+    element = lower.element[better] // places * stations.x.size + station
     return Factors(
         factor=put(found.factor, changed, lower.factor[better]),
         state=put(found.state, changed, lower.state[better]),

@@ -2,11 +2,12 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from dataclasses import replace
 
 import numpy as np
 
-from ifccheck.beam import FlangeWidth, RatedBody, Run, Span
+from ifccheck.beam import FlangeWidth, RatedBody, RatedSpan, Run
 from ifccheck.rating.runs import profile_of
 from ifccheck.standards import Standard
 
@@ -14,13 +15,15 @@ SAME = 0.05
 """Overhangs that differ by less are one [mm]"""
 
 
-def with_widths(body: RatedBody, span: Span, standard: Standard) -> RatedBody:
-    """The body with how far its flanges count, stretch by stretch along it."""
+def with_widths(body: RatedBody, spans: Sequence[RatedSpan], standard: Standard) -> RatedBody:
+    """The body with how far its flanges count, stretch by stretch along it: by its shortest span,
+    where it has several."""
+    shortest = min(each.length for each in spans)
     widths: list[FlangeWidth] = []
     for run in body.runs:
         held = (one for one in body.flanges if one.start < run.end and one.end > run.start)
         if any(held):
-            width = _width(run, span.end - span.start, standard)
+            width = _width(run, shortest, standard)
             if widths and _go_on(widths[-1], width):
                 widths[-1] = replace(widths[-1], end=width.end)
             else:

@@ -39,7 +39,7 @@ from ifccheck.brief.supports import (
     told_ignored,
 )
 from ifccheck.frame.bar_ends import Surroundings
-from ifccheck.frame.carrying import contacts_of, pressed_ends
+from ifccheck.frame.carrying import contacts_of
 from ifccheck.frame.flanges import NO_MEETING, Slabs
 from ifccheck.frame.openings import Net, net_of
 from ifccheck.frame.reactions import loaded_from_side, resting_between, unknown_reactions
@@ -109,7 +109,7 @@ def gather(model: Model, brief: Brief, matches: Matches, standard: Standard) -> 
         for key, pair in supports.items()
         if not isinstance(pair, Reason) and beams[key].axis
     }
-    spans = {key: each.span for key, each in standing.items()}
+    spans = {key: each.reach for key, each in standing.items()}
     loads = (
         *loads_on_beams(brief, matches, beams, spans, contacts),
         *taken_loads(brief, model.loads, beams, spans),
@@ -177,10 +177,8 @@ def _one(
         return Unrated(beam, _distinct(findings.reasons), tuple(findings.remarks))
     return Subject(
         beam=beam,
-        line=standing.line,
-        faces=standing.faces,
+        spans=standing.spans,
         span_source=standing.source,
-        direct=pressed_ends(contacts),
         side_loaded=loaded_from_side(contacts, beam.length, standing.bearings),
         statements=stated,
         bars=(*steel.bars, *more.counted),
@@ -215,16 +213,13 @@ def _judge_standing(
         unknown = sources.supports[beam.key]
         findings.refuse(unknown.text if isinstance(unknown, Reason) else "supports unknown")
     elif standing is not None:
-        supports = (standing.span.start_support, standing.span.end_support)
-        overhang = span_reason(statement, beam, supports)
+        overhang = span_reason(statement, beam, standing.ends)
         findings.reasons += [overhang] if overhang else standing.reasons
         findings.remarks += standing.remarks
-        kinds = {end.kind for end in supports}
+        kinds = {end.kind for end in standing.ends}
         if varies(beam.runs) and "fixed" in kinds and "free" not in kinds:
             findings.remarks.append(Remark(beam.key, "demand", _VARYING_STIFFNESS, "assumption"))
-        findings.reasons += shape_reasons(
-            beam.runs, standing.span, standing.faces, sources.standard
-        )
+        findings.reasons += shape_reasons(beam.runs, standing.spans, sources.standard)
 
 
 def _asked(beam: Beam, sources: Sources, statement: BeamStatement, concrete: Concrete) -> Asked:
@@ -257,10 +252,10 @@ def _net(
     net = net_of(beam, standing, loads, steel, slab, resting)
     if net.body is None:
         return net
-    findings.reasons += deep_member(net.body.runs, standing.faces, sources.standard)
+    findings.reasons += deep_member(net.body.runs, standing.spans, sources.standard)
     if not net.body.flanges:
         return net
-    return replace(net, body=with_widths(net.body, standing.span, sources.standard))
+    return replace(net, body=with_widths(net.body, standing.spans, sources.standard))
 
 
 def _distinct(reasons: Sequence[Reason]) -> tuple[Reason, ...]:
