@@ -35,6 +35,7 @@ from ifccheck.slabs import Flange as Flange
 from ifccheck.slabs import FlangeWidth as FlangeWidth
 from ifccheck.slabs import Slab as Slab
 from ifccheck.standing import Contact as Contact
+from ifccheck.standing import EndKind as EndKind
 from ifccheck.standing import RatedSpan as RatedSpan
 from ifccheck.standing import Span as Span
 from ifccheck.standing import Support as Support

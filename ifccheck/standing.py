@@ -6,12 +6,14 @@ from __future__ import annotations
 from typing import Literal, NamedTuple
 
 SupportKind = Literal["pinned", "fixed", "free"]
+EndKind = Literal["pinned", "fixed", "free", "continuous"]
+"""``continuous``: the beam goes on there with all moment, in itself or in the next one"""
 
 
 class Support(NamedTuple):
     """How one end of a beam stands."""
 
-    kind: SupportKind
+    kind: EndKind
     bearing: float
     """Width of the bearing along the axis [mm]; 0 where it is not given."""
     source: str

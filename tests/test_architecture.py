@@ -38,7 +38,8 @@ ALLOWED: dict[str, set[str]] = {
     "sheet": RIM | {"rating", "standards", "mechanics"},
     "findings": {"beam"},
     "tables": RIM | {"rating"},
-    "subjects": RIM | {"brief", "frame", "detailing", "rating", "standards"},
+    "demand": RIM | {"analysis", "frame", "mechanics", "rating"},
+    "subjects": RIM | {"brief", "demand", "frame", "detailing", "rating", "standards"},
     "results": RIM
     | {"brief", "ifc", "outputs", "publish", "rating", "sheet", "standards", "subjects"},
     "publish": RIM | {"tables", "rating", "sheet", "standards", "mechanics"},

@@ -7,14 +7,19 @@ from dataclasses import dataclass, replace
 
 import numpy as np
 
-from ifccheck.beam import Span, SupportKind
+from ifccheck.beam import EndKind, Span
 from ifccheck.mechanics.arrays import Bools, Floats, Ints
 
 FREE, PINNED, FIXED = 0, 1, 2
 CONTINUOUS = 3
 """A supported end beyond which its line goes on, or at which springs hold it"""
 
-_KIND_CODES: Mapping[SupportKind, int] = {"free": FREE, "pinned": PINNED, "fixed": FIXED}
+KIND_CODES: Mapping[EndKind, int] = {
+    "free": FREE,
+    "pinned": PINNED,
+    "fixed": FIXED,
+    "continuous": CONTINUOUS,
+}
 
 
 @dataclass(frozen=True, slots=True)
@@ -45,8 +50,8 @@ def span_table(spans: Sequence[Span]) -> SpanTable:
     table = SpanTable(
         start=np.array([span.start for span in spans], np.float64),
         end=np.array([span.end for span in spans], np.float64),
-        start_kind=np.array([_KIND_CODES[span.start_support.kind] for span in spans], np.intp),
-        end_kind=np.array([_KIND_CODES[span.end_support.kind] for span in spans], np.intp),
+        start_kind=np.array([KIND_CODES[span.start_support.kind] for span in spans], np.intp),
+        end_kind=np.array([KIND_CODES[span.end_support.kind] for span in spans], np.intp),
     )
     require_standing(table)
     return table

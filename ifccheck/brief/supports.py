@@ -6,7 +6,7 @@ from collections.abc import Mapping, Sequence
 from functools import lru_cache
 from typing import Literal
 
-from ifccheck.beam import Beam, Contact, Reason, Remark, Support, SupportKind
+from ifccheck.beam import Beam, Contact, EndKind, Reason, Remark, Support, SupportKind
 from ifccheck.brief.merging import Matches, Said, merge
 from ifccheck.brief.model import Brief, SupportEntry
 from ifccheck.errors import BriefError
@@ -32,7 +32,7 @@ MOST_BEARING = 0.5
 """Part of a beam's length that its bearings may cover together."""
 
 
-def cannot_stand(start: SupportKind, end: SupportKind) -> str | None:
+def cannot_stand(start: EndKind, end: EndKind) -> str | None:
     """Say why a single beam with such ends falls down; None where it stands."""
     if (start, end) in STANDING_PAIRS:
         return None
@@ -73,6 +73,23 @@ def stated_ends(brief: Brief, matches: Matches) -> dict[str, dict[End, SupportKi
     return {
         key: {end: said[end].value for end in ends if end in said} for key, said in stated.items()
     }
+
+
+def stated_bearings(brief: Brief, matches: Matches) -> dict[tuple[str, str], float]:
+    """Width of the bearing that entries of the brief give an end, by the key of the beam."""
+    stated, _ = merge(brief.supports, matches, _say)
+    return {
+        (key, end): said[name].value
+        for key, said in stated.items()
+        for end, name in _BEARINGS.items()
+        if name in said
+    }
+
+
+def overruled_supports(brief: Brief, matches: Matches) -> tuple[Remark, ...]:
+    """Tell where a later entry of ``[[supports]]`` overrules another."""
+    _, overruled = merge(brief.supports, matches, _say)
+    return tuple(remark for remarks in overruled.values() for remark in remarks)
 
 
 def ignored_contacts(

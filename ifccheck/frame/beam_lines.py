@@ -4,17 +4,15 @@ from __future__ import annotations
 
 from collections.abc import Iterator, Mapping, Sequence
 from itertools import pairwise
-from typing import Literal, NamedTuple
+from typing import NamedTuple
 
+from ifccheck.beam import EndKind
 from ifccheck.frame.ground_up import Joint
 from ifccheck.frame.seats import Seat
 from ifccheck.frame.spanning import Spanning
 
 SAME = 1.0
 """Lengths that differ by no more are the same [mm]."""
-
-EndKind = Literal["free", "pinned", "fixed", "continuous"]
-"""``continuous``: the line goes on there with all moment, in the same beam or in the next one"""
 
 
 class SpanEnd(NamedTuple):

@@ -9,9 +9,9 @@ from itertools import pairwise
 from operator import attrgetter
 from typing import NamedTuple
 
-from ifccheck.beam import Contact, Model, Reason, Remark, SupportKind
+from ifccheck.beam import Contact, EndKind, Model, Reason, Remark, SupportKind
 from ifccheck.frame import told
-from ifccheck.frame.beam_lines import BeamLine, EndKind, LineSpan, SpanEnd, chains
+from ifccheck.frame.beam_lines import BeamLine, LineSpan, SpanEnd, chains
 from ifccheck.frame.carrying import ENDS, End, Stated, judged_contacts
 from ifccheck.frame.contacts import TOLERANCE
 from ifccheck.frame.ground_up import Joint, Order, order_of, told_against, without_free

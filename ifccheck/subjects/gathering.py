@@ -2,18 +2,11 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, replace
 from typing import TypeVar
 
-from ifccheck.beam import (
-    Beam,
-    Given,
-    Load,
-    Model,
-    Reason,
-    Remark,
-)
+from ifccheck.beam import SELF, Beam, Contact, Given, Load, Model, Reason, Remark, Support
 from ifccheck.brief.loads import loads_on_beams
 from ifccheck.brief.merging import Matches
 from ifccheck.brief.model import Brief
@@ -34,6 +27,7 @@ from ifccheck.brief.statements import (
 )
 from ifccheck.brief.supports import (
     ignored_contacts,
+    overruled_supports,
     resolve_supports,
     stated_ends,
     told_ignored,
@@ -52,6 +46,14 @@ from ifccheck.standards import Standard
 from ifccheck.subjects.concrete import Concrete, concrete_of
 from ifccheck.subjects.findings import Findings, Sources
 from ifccheck.subjects.flange_widths import with_widths
+from ifccheck.subjects.framing import (
+    Framing,
+    hangers,
+    passed_doubts,
+    settled_steps,
+    stand_in_building,
+    with_reactions,
+)
 from ifccheck.subjects.slab_steel import SlabSteel, slab_steel_of
 from ifccheck.subjects.steel import Steel, steel_of
 from ifccheck.units import clipped
@@ -81,7 +83,7 @@ def gather(model: Model, brief: Brief, matches: Matches, standard: Standard) -> 
     """Gather everything that the rating of each beam of a model rests on."""
     beams = {beam.key: beam for beam in model.beams}
     contacts = contacts_of(model, stated_ends(brief, matches))
-    supports, remarks = resolve_supports(brief, matches, beams, contacts)
+    supports, remarks = _supports(brief, matches, beams, contacts)
     sources = Sources(
         brief=brief,
         standard=standard,
@@ -104,16 +106,20 @@ def gather(model: Model, brief: Brief, matches: Matches, standard: Standard) -> 
         uncarried=uncarried(brief, model.loads),
         permanent_cases={case.name for case in brief.cases if case.nature == "permanent"},
     )
-    standing = {
-        key: stand_alone(beams[key], pair, contacts.get(key, ()), _stated_span(sources, key))
-        for key, pair in supports.items()
-        if not isinstance(pair, Reason) and beams[key].axis
-    }
+    stated = {key: each.span for key, each in sources.statements.items() if each.span}
+    framing = None
+    if brief.frame:
+        framing = stand_in_building(model, brief, matches, sources.ignored, stated)
+    standing = framing.standing if framing else _standing_alone(beams, sources)
     spans = {key: each.reach for key, each in standing.items()}
     loads = (
         *loads_on_beams(brief, matches, beams, spans, contacts),
         *taken_loads(brief, model.loads, beams, spans),
     )
+    if framing:
+        framing = _with_reactions(framing, beams, _by_beam(loads), sources)
+        loads = (*loads, *(load for own in framing.path.loads.values() for load in own))
+        sources = replace(sources, framing=framing)
     of_beam = _by_beam(loads)
     found = [
         _one(beam, sources, standing.get(beam.key), of_beam.get(beam.key, ()))
@@ -124,6 +130,63 @@ def gather(model: Model, brief: Brief, matches: Matches, standard: Standard) -> 
         unrated=tuple(each for each in found if isinstance(each, Unrated)),
         loads=loads,
     )
+
+
+def _supports(
+    brief: Brief,
+    matches: Matches,
+    beams: Mapping[str, Beam],
+    contacts: Mapping[str, Sequence[Contact]],
+) -> tuple[Mapping[str, tuple[Support, Support] | Reason], Sequence[Remark]]:
+    """What the brief says of the ends of every beam; nothing where the model tells it."""
+    if brief.frame:
+        return {}, overruled_supports(brief, matches)
+    return resolve_supports(brief, matches, beams, contacts)
+
+
+def _standing_alone(beams: Mapping[str, Beam], sources: Sources) -> dict[str, Standing]:
+    return {
+        key: stand_alone(
+            beams[key], pair, sources.contacts.get(key, ()), _stated_span(sources, key)
+        )
+        for key, pair in sources.supports.items()
+        if not isinstance(pair, Reason) and beams[key].axis
+    }
+
+
+def _with_reactions(
+    framing: Framing,
+    beams: Mapping[str, Beam],
+    loads: Mapping[str, Sequence[Load]],
+    sources: Sources,
+) -> Framing:
+    """The same with what beams give each other, and doubts of what they do not."""
+    weights = {
+        key: concrete_of(beams[key], sources, Findings(key)).unit_weight.value
+        for key in framing.standing
+    }
+    framing = with_reactions(framing, beams, loads, weights, sources.brief)
+    own = {}
+    for key, standing in framing.standing.items():
+        statement = sources.statements.get(key, NO_STATEMENT)
+        doubts = _unknown(beams[key], replace(sources, framing=framing), statement, standing)
+        if doubts or not (loads.get(key) or framing.path.loads.get(key) or statement.unloaded):
+            own[key] = doubts[0].text if doubts else "no load assigned"
+    return replace(framing, passed=passed_doubts(framing, beams, own))
+
+
+def _unknown(
+    beam: Beam, sources: Sources, statement: BeamStatement, standing: Standing
+) -> Sequence[Reason]:
+    """Why not all that acts on a beam is known."""
+    if statement.loads_complete:
+        return ()
+    contacts: Sequence[Contact] = sources.contacts.get(beam.key, ())
+    if sources.framing:
+        settled = settled_steps(sources.framing, beam.key)
+        contacts = [contact for contact in contacts if contact.other_step not in settled]
+    reasons = unknown_reactions(beam, contacts, standing, sources.unmeasured)
+    return [*reasons, *(sources.framing.passed.get(beam.key, ()) if sources.framing else ())]
 
 
 def _not_concrete(model: Model) -> frozenset[int]:
@@ -198,6 +261,7 @@ def _one(
         slab_bars=more.listed,
         slab_bars_from=more.source,
         body=net.body,
+        continuity=sources.framing.path.continuity.get(beam.key) if sources.framing else None,
     )
 
 
@@ -210,14 +274,18 @@ def _judge_standing(
 ) -> None:
     """Note every doubt about how the beam stands."""
     if standing is None and beam.axis:
-        unknown = sources.supports[beam.key]
+        given = sources.framing.unknown if sources.framing else sources.supports
+        unknown = given.get(beam.key)
         findings.refuse(unknown.text if isinstance(unknown, Reason) else "supports unknown")
     elif standing is not None:
         overhang = span_reason(statement, beam, standing.ends)
         findings.reasons += [overhang] if overhang else standing.reasons
         findings.remarks += standing.remarks
+        if sources.framing:
+            findings.reasons += sources.framing.lines.crossing.get(beam.key, ())
+            findings.remarks += hangers(sources.framing, beam.key)
         kinds = {end.kind for end in standing.ends}
-        if varies(beam.runs) and "fixed" in kinds and "free" not in kinds:
+        if varies(beam.runs) and kinds & {"fixed", "continuous"} and "free" not in kinds:
             findings.remarks.append(Remark(beam.key, "demand", _VARYING_STIFFNESS, "assumption"))
         findings.reasons += shape_reasons(beam.runs, standing.spans, sources.standard)
 
@@ -324,7 +392,7 @@ def _judge_loads(
     findings: Findings,
 ) -> None:
     """Note every doubt about what acts on the beam."""
-    if not loads and not statement.unloaded:
+    if not statement.unloaded and all(load.case == SELF for load in loads):
         findings.refuse("no load assigned", blocking=False)
     if sources.upward:
         _judge_upward(sources, loads, findings)
@@ -339,6 +407,5 @@ def _judge_loads(
         findings.remarks.append(Remark(beam.key, "demand", _THROUGH_THE_WEB, "assumption"))
     if sources.crane_cases and any(load.case in sources.crane_cases for load in loads):
         findings.remarks.append(Remark(beam.key, "demand", _CRANE, "assumption"))
-    if standing and not statement.loads_complete:
-        contacts = sources.contacts.get(beam.key, ())
-        findings.reasons += unknown_reactions(beam, contacts, standing, sources.unmeasured)
+    if standing:
+        findings.reasons += _unknown(beam, sources, statement, standing)

@@ -1,0 +1,1 @@
+"""What acts on beams that stand in a building: lines, patterns, and reactions passed on."""

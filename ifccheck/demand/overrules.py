@@ -1,0 +1,99 @@
+"""What the brief states of spans that the model shows: restraint, bearings and lengths."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping, Sequence
+from typing import Literal, NamedTuple
+
+from ifccheck.beam import Given
+from ifccheck.frame.beam_lines import BeamLine, LineSpan, Node, SpanEnd
+
+Restraint = Literal["pinned", "fixed"]
+
+
+class Overrules(NamedTuple):
+    """What the engineer says of how beams stand, by key."""
+
+    restraint: Restraint = "pinned"
+    """How an end of a line stands that runs into a column or a wall"""
+    bearings: Mapping[tuple[str, str], float] = {}
+    """Width of the bearing at an end ("start", "end") of a beam [mm]"""
+    depths: Mapping[str, float] = {}
+    """Of the beams, half of which a span reaches into a wide bearing at most [mm]"""
+    spans: Mapping[str, Given] = {}
+    """Length of the span of a beam [mm]"""
+
+
+def overruled(lines: Sequence[BeamLine], said: Overrules) -> tuple[BeamLine, ...]:
+    """The lines as the engineer says that they stand."""
+    return tuple(_overruled(line, said) for line in lines)
+
+
+def several_spans(lines: Sequence[BeamLine], said: Overrules) -> list[str]:
+    """Keys of beams of which one span is stated, and which make several or go on."""
+    return [
+        beam.key
+        for line in lines
+        if len(line.spans) > 1
+        for beam in line.beams
+        if beam.key in said.spans
+    ]
+
+
+def _overruled(line: BeamLine, said: Overrules) -> BeamLine:
+    spans = tuple(_span(span, said) for span in line.spans)
+    if len(spans) == 1 and spans[0].beam in said.spans:
+        spans = (_stated(spans[0], said.spans[spans[0].beam].value),)
+    first, last = spans[0].ends[0], spans[-1].ends[1]
+    nodes = [*line.nodes]
+    nodes[0], nodes[-1] = _node(nodes[0], first), _node(nodes[-1], last)
+    return BeamLine(line.beams, spans, tuple(nodes))
+
+
+def _node(node: Node, end: SpanEnd) -> Node:
+    return Node(end.kind, (end.seat,) if end.seat and len(node.seats) < 2 else node.seats)
+
+
+def _span(span: LineSpan, said: Overrules) -> LineSpan:
+    return span._replace(
+        start=_end(span, span.start, "start", said), end=_end(span, span.end, "end", said)
+    )
+
+
+def _end(span: LineSpan, end: SpanEnd, which: str, said: Overrules) -> SpanEnd:
+    if end.seat is None:
+        return end
+    if said.restraint == "fixed" and end.kind == "pinned" and end.seat.built_in:
+        end = end._replace(kind="fixed")
+    width = said.bearings.get((span.beam, which), 0.0)
+    if not width or end.seat is None or end.seat.place != which:
+        return end
+    return _borne(end, which, width, said.depths[span.beam])
+
+
+def _borne(end: SpanEnd, which: str, width: float, depth: float) -> SpanEnd:
+    """An end on a bearing of stated width, which begins where its support does."""
+    seat = end.seat
+    assert seat is not None
+    half = min(width, depth) / 2.0
+    if which == "start":
+        low, high = seat.low, seat.low + width
+        face, centre = high, high - half
+    else:
+        low, high = seat.high - width, seat.high
+        face, centre = low, low + half
+    x = face if end.kind == "fixed" and end.x == end.face else centre
+    return SpanEnd(end.kind, x, face, seat._replace(low=low, high=high, x=centre))
+
+
+def _stated(span: LineSpan, length: float) -> LineSpan:
+    """A cantilever's is counted from the face, any other lies centred."""
+    start, end = span.start, span.end
+    if end.kind == "free":
+        return span._replace(end=end._replace(x=start.x + length))
+    if start.kind == "free":
+        return span._replace(start=start._replace(x=end.x - length))
+    middle = (start.x + end.x) / 2.0
+    return span._replace(
+        start=start._replace(x=middle - length / 2.0), end=end._replace(x=middle + length / 2.0)
+    )

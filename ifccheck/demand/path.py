@@ -1,0 +1,267 @@
+"""The way of loads from beam to beam: lines solved in order of dependence, reactions passed on.
+
+What rests on a beam is solved before it. Its reactions, case by case and unfactored, become
+point loads on what carries it; those of a case that may act on some spans and not on others as
+the most that it may press and the most that it may lift, of which either may act.
+"""
+
+from __future__ import annotations
+
+from collections import defaultdict
+from collections.abc import Iterator, Mapping, Sequence
+from dataclasses import dataclass, field
+from typing import NamedTuple
+
+import numpy as np
+
+from ifccheck.analysis.lines import continuous
+from ifccheck.analysis.parts import Parts
+from ifccheck.analysis.spans import FREE, in_line
+from ifccheck.analysis.statics import Solved, solve
+from ifccheck.analysis.stiffness import with_varying_stiffness
+from ifccheck.beam import Beam, Case, Load, Reason
+from ifccheck.demand.rows import Rows, curvature_on, line_table, loads_on, nodes_of, rows_of
+from ifccheck.frame.beam_lines import BeamLine, Node
+from ifccheck.mechanics.arrays import Floats
+from ifccheck.rating.subject import Continuity
+from ifccheck.units import show
+
+IN_A_RING = "supports unknown: what carries it is itself carried by what it carries"
+
+_NOTHING = 1e-9
+"""Part of all that a line carries in a case below which a reaction is none"""
+
+
+class Balance(NamedTuple):
+    """What becomes of the loads of one case on the beams of one storey, unfactored [N]."""
+
+    storey: str
+    case: str
+    applied: float
+    """Self weight and the loads of the brief"""
+    received: float
+    """From beams that rest on them"""
+    passed_on: float
+    """To beams that carry them"""
+    ground: float
+    """To columns, walls and all else that stands"""
+
+    @property
+    def difference(self) -> float:
+        """What is lost or gained."""
+        return self.applied + self.received - self.passed_on - self.ground
+
+
+@dataclass(frozen=True, slots=True)
+class LoadPath:
+    """What beams do to each other."""
+
+    loads: dict[str, list[Load]] = field(default_factory=lambda: defaultdict(list))
+    """Reactions that each beam receives, by key"""
+    continuity: dict[str, Continuity] = field(default_factory=dict)
+    """Of beams in lines of more than one span"""
+    resting: dict[str, set[str]] = field(default_factory=lambda: defaultdict(set))
+    """Beams whose reactions each beam receives"""
+    in_a_ring: dict[str, Reason] = field(default_factory=dict)
+    """Beams that wait for each other, and are not solved"""
+    balance: list[Balance] = field(default_factory=list)
+
+
+class _Given(NamedTuple):
+    """What all rounds work on."""
+
+    beams: Mapping[str, Beam]
+    loads: Mapping[str, Sequence[Load]]
+    unit_weights: Mapping[str, float]
+    cases: Sequence[Case]
+    line_of: Mapping[str, int]
+
+
+def load_path(
+    lines: Sequence[BeamLine],
+    beams: Mapping[str, Beam],
+    loads: Mapping[str, Sequence[Load]],
+    unit_weights: Mapping[str, float],
+    cases: Sequence[Case],
+) -> LoadPath:
+    """Solve all lines and pass their reactions on.
+
+    Parameters
+    ----------
+    lines
+        How beams stand.
+    beams
+        By key.
+    loads
+        Of the brief, by the key of the beam that they act on.
+    unit_weights
+        For self weight, of every beam [N/mm3].
+    cases
+        All cases, ``self`` among them.
+    """
+    line_of = {each.key: number for number, line in enumerate(lines) for each in line.beams}
+    given = _Given(beams, loads, unit_weights, cases, line_of)
+    path, solved = LoadPath(), set[int]()
+    for some in _rounds(lines, line_of):
+        solved |= set(some)
+        _solve([lines[number] for number in some], given, path)
+    for number, line in enumerate(lines):
+        if number not in solved:
+            path.in_a_ring.update({each.key: Reason(IN_A_RING) for each in line.beams})
+    return path
+
+
+def _rounds(lines: Sequence[BeamLine], line_of: Mapping[str, int]) -> Iterator[list[int]]:
+    """Lines that may be solved together, each after all that rests on it."""
+    carriers = [
+        {line_of[key] for key in _carrying(line) if key in line_of} - {number}
+        for number, line in enumerate(lines)
+    ]
+    waiting = [0] * len(lines)
+    for carried in carriers:
+        for carrier in carried:
+            waiting[carrier] += 1
+    ready = [number for number, count in enumerate(waiting) if not count]
+    while ready:
+        yield ready
+        freed = []
+        for number in ready:
+            for carrier in carriers[number]:
+                waiting[carrier] -= 1
+                if not waiting[carrier]:
+                    freed.append(carrier)
+        ready = sorted(freed)
+
+
+def _carrying(line: BeamLine) -> Iterator[str]:
+    return (_carrier(node) for node in line.nodes if node.seats)
+
+
+def _carrier(node: Node) -> str:
+    """Key of the beam that carries a line at a support; empty where that stands on the ground."""
+    return node.seats[0].carrier_beam if node.seats else ""
+
+
+def _solve(lines: Sequence[BeamLine], given: _Given, path: LoadPath) -> None:
+    """Solve some lines, and note what they give on."""
+    rows = rows_of(lines)
+    received = {key: path.loads[key] for key in rows.keys if key in path.loads}
+    loads = {key: [*given.loads.get(key, ()), *received.get(key, ())] for key in rows.keys}
+    table, parts = loads_on(rows, given.beams, loads, given.unit_weights, given.cases)
+    solved = solve(rows.spans, table, parts.case.size)
+    curvature = curvature_on(rows, given.beams, table)
+    if curvature is not None:
+        solved = with_varying_stiffness(solved, curvature)
+    solved = continuous(solved, line_table(rows, given.beams), curvature)
+    _note_continuity(rows, solved, parts, path)
+    forces = _at_nodes(rows, solved)
+    _pass_on(rows, forces, parts, given, path)
+    path.balance.extend(_balance(rows, forces, received, solved.totals.force, parts, given))
+
+
+def _note_continuity(rows: Rows, solved: Solved, parts: Parts, path: LoadPath) -> None:
+    """Keep the moments at the ends of spans that go on."""
+    near, along = solved.start.moment, solved.start.reaction * solved.spans.length
+    far = near + along - solved.totals.moment
+    simple = (solved.spans.start_kind != FREE) & (solved.spans.end_kind != FREE)
+    moments = np.stack([np.where(simple, near, 0.0), np.where(simple, far, 0.0)], axis=-1)
+    goes_on = in_line(solved.spans)
+    for beam in np.unique(rows.beam_of[goes_on]).tolist():
+        spans = np.flatnonzero(rows.beam_of == beam)
+        path.continuity[rows.keys[beam]] = Continuity(
+            places=tuple(rows.place[spans].tolist()),
+            spans=len(rows.lines[rows.line[spans[0]]].spans),
+            parts=parts,
+            moments=moments[:, spans] * goes_on[spans][:, None],
+        )
+
+
+def _at_nodes(rows: Rows, solved: Solved) -> Floats:
+    """Upward force of every node on its line, part by part [N] (P, J)."""
+    first = solved.start.reaction
+    last = solved.totals.force - first
+    forces = np.zeros((len(first), rows.nodes))
+    against = rows.against == 1
+    np.add.at(forces.T, rows.left, np.where(against, last, first).T)
+    np.add.at(forces.T, rows.left + 1, np.where(against, first, last).T)
+    return forces
+
+
+def _pass_on(rows: Rows, forces: Floats, parts: Parts, given: _Given, path: LoadPath) -> None:
+    """Lay the reactions of lines on the beams that carry them."""
+    whole = parts.whole(np.abs(forces)).max(axis=0, initial=0.0)
+    for line, place, node in nodes_of(rows):
+        carrier = _carrier(rows.lines[line].nodes[place])
+        if carrier in given.line_of:
+            of_node = rows.lines[line].nodes[place]
+            beam = given.beams[of_node.seats[0].beam]
+            path.resting[carrier].add(beam.key)
+            x = _place_on(beam, of_node.seats[0].x, given.beams[carrier])
+            least = _NOTHING * float(whole[node])
+            for case, force, apart in _forces(forces[:, node], parts, given.cases):
+                if abs(force) > least:
+                    path.loads[carrier].append(_reaction(beam, carrier, case, force, x, apart))
+
+
+def _forces(
+    of_parts: Floats, parts: Parts, cases: Sequence[Case]
+) -> Iterator[tuple[str, float, bool]]:
+    """What a support gives in every case: the whole, or what presses and, apart, what lifts."""
+    first = parts.first.tolist()
+    for number, case in enumerate(cases):
+        own = of_parts[first[number] : first[number + 1]]
+        if not case.by_spans:
+            yield case.name, float(own.sum()), False
+        else:
+            yield case.name, float(np.maximum(own, 0.0).sum()), False
+            yield case.name, float(np.minimum(own, 0.0).sum()), True
+
+
+def _place_on(beam: Beam, x: float, carrier: Beam) -> float:
+    """x on the carrier of a place along a beam, within the carrier [mm]."""
+    assert beam.axis is not None
+    assert carrier.axis is not None
+    point = [o + x * d for o, d in zip(beam.axis.origin, beam.axis.x, strict=True)]
+    along = sum(
+        (p - o) * d for p, o, d in zip(point, carrier.axis.origin, carrier.axis.x, strict=True)
+    )
+    return min(max(along, 0.0), carrier.axis.length)
+
+
+def _reaction(beam: Beam, carrier: str, case: str, force: float, x: float, apart: bool) -> Load:
+    told = f"{show(force, 'force')} at {show(x, 'length')} from {beam.mark}"
+    return Load(
+        carrier, case, "point", x, x, (force, force),
+        origin=f"reaction of {beam.mark} ({beam.ifc_class})",
+        text=f"{told}, where it lifts" if apart else told, apart=apart,
+    )  # fmt: skip
+
+
+def _balance(
+    rows: Rows,
+    forces: Floats,
+    received: Mapping[str, Sequence[Load]],
+    total: Floats,
+    parts: Parts,
+    given: _Given,
+) -> Iterator[Balance]:
+    """What goes in and out of the beams of each storey; ``total`` is on each span (P, S)."""
+    storeys: dict[str, int] = {}
+    of_beam = [storeys.setdefault(given.beams[key].storey, len(storeys)) for key in rows.keys]
+    row_of_case = {case.name: row for row, case in enumerate(given.cases)}
+    every, taken, passed, ground = np.zeros((4, len(given.cases), len(storeys)))
+    np.add.at(every.T, np.array(of_beam)[rows.beam_of], parts.whole(total).T)
+    for key, storey in zip(rows.keys, of_beam, strict=True):
+        for load in received.get(key, ()):
+            taken[row_of_case[load.case], storey] += load.values[0]
+    held = parts.whole(forces)
+    for line, place, node in nodes_of(rows):
+        of_node = rows.lines[line].nodes[place]
+        if of_node.seats:
+            goes_to = passed if _carrier(of_node) in given.line_of else ground
+            goes_to[:, storeys[given.beams[of_node.seats[0].beam].storey]] += held[:, node]
+    for name, column in storeys.items():
+        for row, case in enumerate(given.cases):
+            into, out = float(taken[row, column]), float(passed[row, column])
+            own = float(every[row, column]) - into
+            yield Balance(name, case.name, own, into, out, float(ground[row, column]))

@@ -1,0 +1,157 @@
+"""Beams that stand in the building: on what the model shows, loaded by what rests on them."""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Iterator, Mapping, Sequence
+from dataclasses import dataclass, field, replace
+
+from ifccheck.beam import Bars, Beam, Contact, Given, Load, Model, Reason, Remark
+from ifccheck.brief.cases import cases_of
+from ifccheck.brief.merging import Matches
+from ifccheck.brief.model import Brief
+from ifccheck.brief.supports import stated_bearings, stated_ends
+from ifccheck.demand.overrules import Overrules, overruled, several_spans
+from ifccheck.demand.path import LoadPath, load_path
+from ifccheck.demand.standing import standing_in_lines
+from ifccheck.frame.boxes import section_extent
+from ifccheck.frame.contacts import contacts_of_others, find_contacts
+from ifccheck.frame.ground_up import Joint
+from ifccheck.frame.lines import Lines, find_lines
+from ifccheck.frame.spans import Standing
+
+RUNS_THROUGH = 20.0
+"""Diameters that a bar goes on past the end of its beam where it runs through a joint"""
+
+ONE_OF_SEVERAL = Reason(
+    "supports unknown: its span is stated, but it makes several or goes on into another beam; state"
+    " its supports instead"
+)
+_HANGERS = "frames into its side: the hanger steel there is not checked"
+
+
+@dataclass(frozen=True, slots=True)
+class Framing:
+    """How all beams of a model stand in it."""
+
+    lines: Lines
+    standing: dict[str, Standing]
+    unknown: dict[str, Reason]
+    """Why beams do not stand"""
+    beams: Mapping[str, Beam]
+    path: LoadPath = field(default_factory=LoadPath)
+    passed: Mapping[str, Sequence[Reason]] = field(default_factory=dict)
+    """Why what rests on a beam does not give all that acts on it"""
+
+
+def stand_in_building(
+    model: Model,
+    brief: Brief,
+    matches: Matches,
+    ignored: Mapping[str, Sequence[Contact]],
+    spans: Mapping[str, Given],
+) -> Framing:
+    """Stand all beams on what the model shows under them and the brief says of them.
+
+    ``ignored`` are contacts that hold no beam, ``spans`` are lengths that the brief states.
+    """
+    contacts = {
+        key: [each for each in own if each not in ignored.get(key, ())]
+        for key, own in find_contacts(model.beams, model.members).items()
+    }
+    others = contacts_of_others(model.beams, model.members)
+    beams = {beam.key: beam for beam in model.beams}
+    stated = stated_ends(brief, matches)
+    shown = find_lines(model, contacts, others, stated, runs_through(brief, beams))
+    said = _overrules(brief, matches, beams, spans)
+    unknown = dict(shown.unknown) | dict.fromkeys(several_spans(shown.lines, said), ONE_OF_SEVERAL)
+    lines = shown._replace(lines=overruled(shown.lines, said))
+    sources = dict.fromkeys(stated, "brief, [[supports]]")
+    standing = standing_in_lines(lines.lines, beams, lines.remarks, sources)
+    stands = {key: each for key, each in standing.items() if key not in unknown}
+    return Framing(lines, stands, unknown, beams)
+
+
+def _overrules(
+    brief: Brief, matches: Matches, beams: Mapping[str, Beam], spans: Mapping[str, Given]
+) -> Overrules:
+    assert brief.frame is not None
+    bearings = stated_bearings(brief, matches)
+    depths = {key: _depth(beams[key]) for key, _ in bearings if beams[key].runs}
+    return Overrules(brief.frame.restraint, bearings, depths, spans)
+
+
+def _depth(beam: Beam) -> float:
+    *_, low, high = section_extent(beam)
+    return high - low
+
+
+def runs_through(brief: Brief, beams: Mapping[str, Beam]) -> Callable[[Joint, Joint], bool]:
+    """Whether moment passes from one end of a beam to another, as the brief has it."""
+    assert brief.frame is not None
+    if brief.frame.continuity != "bars":
+        always = brief.frame.continuity == "always"
+        return lambda one, other: always
+    return lambda one, other: any(_reaches_out(beams[key], end) for key, end in (one, other))
+
+
+def _reaches_out(beam: Beam, end: str) -> bool:
+    """Whether drawn bars of its upper half go on past an end of a beam."""
+    bars = [bar for each in beam.reinforcement if each.source == "bars" for bar in each.bars]
+    heights = [z for _, z in beam.runs[0].outline.rings[0]]
+    middle = (min(heights) + max(heights)) / 2.0
+    return any(bar.z > middle and _past(bar, beam, end) for bar in bars)
+
+
+def _past(bar: Bars, beam: Beam, end: str) -> bool:
+    past = -bar.start if end == "start" else bar.end - beam.length
+    beyond = bar.start_beyond if end == "start" else bar.end_beyond
+    return past + beyond >= RUNS_THROUGH * bar.diameter
+
+
+def with_reactions(
+    framing: Framing,
+    beams: Mapping[str, Beam],
+    loads: Mapping[str, Sequence[Load]],
+    unit_weights: Mapping[str, float],
+    brief: Brief,
+) -> Framing:
+    """The same with what beams give each other."""
+    path = load_path(framing.lines.lines, beams, loads, unit_weights, cases_of(brief))
+    for key, reason in path.in_a_ring.items():
+        framing.standing.pop(key, None)
+        framing.unknown[key] = reason
+    return replace(framing, path=path)
+
+
+def settled_steps(framing: Framing, key: str) -> set[int]:
+    """Step ids of what touches a beam and is accounted for: what carries it, and what rests on it
+    and gives its reaction."""
+    carriers = {seat.carrier for seat in framing.lines.seats.get(key, ())}
+    return carriers | {framing.beams[other].step_id for other in framing.path.resting.get(key, ())}
+
+
+def hangers(framing: Framing, key: str) -> Iterator[Remark]:
+    """What is not checked where beams frame into the side of another."""
+    for other in sorted(framing.path.resting.get(key, ())):
+        seats = [seat for seat in framing.lines.seats[other] if seat.carrier_beam == key]
+        if any(not seat.direct for seat in seats):
+            yield Remark(key, "demand", f"{framing.beams[other].mark} {_HANGERS}", "doubt")
+
+
+def passed_doubts(
+    framing: Framing, beams: Mapping[str, Beam], own: Mapping[str, str]
+) -> dict[str, list[Reason]]:
+    """Why beams may not be called adequate as what rests on them, or on that, is not all known.
+
+    ``own`` tells why what acts on a beam is not, by key.
+    """
+    found: dict[str, list[Reason]] = {}
+    for key in reversed(framing.lines.order):
+        why = own.get(key) or (found[key][0].text if key in found else "")
+        if not why or key not in beams:
+            continue
+        for carrier in dict.fromkeys(seat.carrier_beam for seat in framing.lines.seats[key]):
+            if key in framing.path.resting.get(carrier, ()):
+                text = f"reactions not included: not all that acts on {beams[key].mark} is known"
+                found.setdefault(carrier, []).append(Reason(text, blocking=False))
+    return found
