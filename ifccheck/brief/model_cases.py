@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections import defaultdict
 from collections.abc import Iterator, Mapping, Sequence
 
-from ifccheck.beam import ActionDoubt, Beam, LaidAction, Load, ModelCase, ModelLoads, Remark, Span
+from ifccheck.beam import ActionDoubt, Beam, LaidAction, Load, ModelCase, ModelLoads, Remark
 from ifccheck.brief.model import Brief, TakenCase
 from ifccheck.brief.places import did_you_mean
 from ifccheck.errors import BriefError
@@ -17,7 +17,10 @@ OF_NO_CASE = "give what acts under [[loads]], or assign them to a load case in t
 
 
 def taken_loads(
-    brief: Brief, found: ModelLoads, beams: Mapping[str, Beam], spans: Mapping[str, Span]
+    brief: Brief,
+    found: ModelLoads,
+    beams: Mapping[str, Beam],
+    spans: Mapping[str, tuple[float, float]],
 ) -> tuple[Load, ...]:
     """Return the loads of the model's cases that the brief takes, cut to each beam's length, or
     to its span where that is longer."""
@@ -43,8 +46,10 @@ def upward_of(brief: Brief, found: ModelLoads) -> dict[str, bool]:
     }
 
 
-def _load(action: LaidAction, taken: TakenCase, beam: Beam, span: Span | None) -> Load | None:
-    first, last = (span.start, span.end) if span else (0.0, beam.length)
+def _load(
+    action: LaidAction, taken: TakenCase, beam: Beam, span: tuple[float, float] | None
+) -> Load | None:
+    first, last = span or (0.0, beam.length)
     low, high = min(0.0, first), max(beam.length, last)
     start, end = max(action.start, low), min(action.end, high)
     values = action.values

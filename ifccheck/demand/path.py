@@ -152,7 +152,9 @@ def _solve(lines: Sequence[BeamLine], given: _Given, path: LoadPath) -> None:
     curvature = curvature_on(rows, given.beams, table)
     if curvature is not None:
         solved = with_varying_stiffness(solved, curvature)
-    solved = continuous(solved, line_table(rows, given.beams), curvature)
+    joined = line_table(rows, given.beams)
+    if joined.line.size:
+        solved = continuous(solved, joined, curvature)
     _note_continuity(rows, solved, parts, path)
     forces = _at_nodes(rows, solved)
     _pass_on(rows, forces, parts, given, path)

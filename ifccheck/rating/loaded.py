@@ -88,7 +88,7 @@ def loaded(
         critical_rows(of_spans, critical[:, 0], critical[:, 1]),
         [row for row, case in enumerate(cases) if case.rated],
         unbounded=frame.side_loaded,
-        parts=frame.parts,
+        parts=frame.parts.case,
     )
     arrays = make_station_arrays(frame, of_spans.beam, of_spans.x, of_spans.side)
     stations = replace(of_spans, beam=arrays[1].beam)

@@ -106,7 +106,7 @@ def _factors_at(
     frame, stations = under.frame, StationTable(span, x, side)
     cases = effects_at(under.solved, stations, deflections=False)
     effects = combine(cases, under.factors)
-    acting = demands(effects, np.arange(x.size), (growth.case,), parts=frame.parts)
+    acting = demands(effects, np.arange(x.size), (growth.case,), parts=frame.parts.case)
     arrays = make_station_arrays(frame, span, x, side)
     beams, row = np.unique(arrays[1].beam, return_inverse=True)
     elements = distinct_elements(effects, acting, row)
