@@ -75,7 +75,9 @@ def _frame(table: schema.BriefTable) -> FrameOptions | None:
             ("frame",),
             "takes supports from the model, and defaults.supports states them: leave one out",
         )
-    return FrameOptions(table.frame.restraint, table.frame.continuity)
+    return FrameOptions(
+        table.frame.restraint, table.frame.continuity, tuple(table.frame.load_bearing)
+    )
 
 
 def _scope(table: schema.ScopeTable) -> Scope:

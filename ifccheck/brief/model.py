@@ -210,6 +210,8 @@ class FrameOptions:
     """How an end stands that runs into a column or a wall"""
     continuity: Continuity = "bars"
     """Where moment passes from beam to beam over a support: where bars do, always or never"""
+    load_bearing: tuple[str, ...] = ()
+    """Marks of walls and members that carry the beams which lie on them between their ends"""
 
 
 @dataclass(frozen=True, slots=True)

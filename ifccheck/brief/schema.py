@@ -140,6 +140,7 @@ class FrameTable(Table):
 
     restraint: Restraint = "pinned"
     continuity: Continuity = "bars"
+    load_bearing: list[Name] = Field(default_factory=list)
 
 
 class DefaultsTable(MaterialsTable):

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Iterator, Mapping, Sequence
+from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass, field, replace
 
 from ifccheck.beam import Bars, Beam, Contact, Given, Load, Model, Reason, Remark
@@ -13,14 +13,16 @@ from ifccheck.brief.supports import stated_bearings, stated_ends
 from ifccheck.demand.overrules import Overrules, overruled, several_spans
 from ifccheck.demand.path import LoadPath, load_path
 from ifccheck.demand.standing import standing_in_lines
+from ifccheck.errors import BriefError
 from ifccheck.frame.boxes import section_extent
 from ifccheck.frame.contacts import contacts_of_others, find_contacts
-from ifccheck.frame.ground_up import Joint
+from ifccheck.frame.joints import Meeting, RunsThrough
 from ifccheck.frame.lines import Lines, find_lines
 from ifccheck.frame.spans import Standing
+from ifccheck.units import clipped
 
 RUNS_THROUGH = 20.0
-"""Diameters that a bar goes on past the end of its beam where it runs through a joint"""
+"""Diameters that a bar goes on past the farther face of the support where it runs through"""
 
 ONE_OF_SEVERAL = Reason(
     "supports unknown: its span is stated, but it makes several or goes on into another beam; state"
@@ -61,7 +63,8 @@ def stand_in_building(
     others = contacts_of_others(model.beams, model.members)
     beams = {beam.key: beam for beam in model.beams}
     stated = stated_ends(brief, matches)
-    shown = find_lines(model, contacts, others, stated, runs_through(brief, beams))
+    bearing = load_bearing(brief, contacts)
+    shown = find_lines(model, contacts, others, stated, runs_through(brief, beams), bearing)
     said = _overrules(brief, matches, beams, spans)
     unknown = dict(shown.unknown) | dict.fromkeys(several_spans(shown.lines, said), ONE_OF_SEVERAL)
     lines = shown._replace(lines=overruled(shown.lines, said))
@@ -85,27 +88,46 @@ def _depth(beam: Beam) -> float:
     return high - low
 
 
-def runs_through(brief: Brief, beams: Mapping[str, Beam]) -> Callable[[Joint, Joint], bool]:
-    """Whether moment passes from one end of a beam to another, as the brief has it."""
+def runs_through(brief: Brief, beams: Mapping[str, Beam]) -> RunsThrough:
+    """Whether a beam passes moment on over a support into another, as the brief has it."""
     assert brief.frame is not None
     if brief.frame.continuity != "bars":
         always = brief.frame.continuity == "always"
-        return lambda one, other: always
-    return lambda one, other: any(_reaches_out(beams[key], end) for key, end in (one, other))
+        return lambda meeting: always
+    return lambda meeting: _reaches(beams[meeting.beam], meeting)
 
 
-def _reaches_out(beam: Beam, end: str) -> bool:
-    """Whether drawn bars of its upper half go on past an end of a beam."""
+def _reaches(beam: Beam, meeting: Meeting) -> bool:
+    """Whether drawn bars of its upper half go on past the support."""
     bars = [bar for each in beam.reinforcement if each.source == "bars" for bar in each.bars]
     heights = [z for _, z in beam.runs[0].outline.rings[0]]
     middle = (min(heights) + max(heights)) / 2.0
-    return any(bar.z > middle and _past(bar, beam, end) for bar in bars)
+    return any(bar.z > middle and _past(bar, meeting) for bar in bars)
 
 
-def _past(bar: Bars, beam: Beam, end: str) -> bool:
-    past = -bar.start if end == "start" else bar.end - beam.length
-    beyond = bar.start_beyond if end == "start" else bar.end_beyond
-    return past + beyond >= RUNS_THROUGH * bar.diameter
+def _past(bar: Bars, meeting: Meeting) -> bool:
+    if meeting.end == "start":
+        past = meeting.far - (bar.start - bar.start_beyond)
+    else:
+        past = bar.end + bar.end_beyond - meeting.far
+    return past >= RUNS_THROUGH * bar.diameter
+
+
+def load_bearing(brief: Brief, contacts: Mapping[str, Sequence[Contact]]) -> set[int]:
+    """Step ids of what the brief says carries the beams that lie on it; raises BriefError for a
+    mark that touches no beam."""
+    assert brief.frame is not None
+    touching = [contact for own in contacts.values() for contact in own]
+    found: set[int] = set()
+    for mark in brief.frame.load_bearing:
+        steps = {contact.other_step for contact in touching if contact.goes_by(mark)}
+        if not steps:
+            raise BriefError(
+                f"{brief.at('frame.load_bearing')}: {clipped(mark, 120)} touches no beam: correct"
+                " or remove it"
+            )
+        found |= steps
+    return found
 
 
 def with_reactions(
