@@ -96,9 +96,10 @@ def continuous_joints(
 
 def _meeting(one: Joint, other: Joint, clusters: Mapping[str, Sequence[Cluster]]) -> Meeting:
     both = _candidates(one, clusters)
-    if len(both) > 1:
-        there = {each.contact.other_step for each in _candidates(other, clusters)}
-        both = [each for each in both if each.contact.other_step in there]
+    if len(both) == 1:
+        return Meeting(*one, *other, both[0].high if one[1] == "end" else both[0].low)
+    there = {each.contact.other_step for each in _candidates(other, clusters)}
+    both = [each for each in both if each.contact.other_step in there]
     if one[1] == "end":
         return Meeting(*one, *other, max([each.high for each in both]))
     return Meeting(*one, *other, min([each.low for each in both]))

@@ -121,13 +121,13 @@ def _seats(frame: _Frame, key: str) -> tuple[Seat, ...]:
     body, order = frame.bodies[key], frame.order
     found = []
     for cluster in frame.clusters[key]:
-        for candidate in cluster.candidates:
-            if not order.speaks_against(key, candidate):
-                found.append(seat_of(body, cluster, candidate))
-                break
-        else:
-            doubt = told_against(key, cluster, order)
-            found.append(seat_of(body, cluster, cluster.candidates[0], doubt))
+        first = cluster.candidates[0]
+        if first.carrier is None and not first.contact.doubt:
+            found.append(seat_of(body, cluster, first))
+            continue
+        sure = [each for each in cluster.candidates if not order.speaks_against(key, each)]
+        doubt = "" if sure else told_against(key, cluster, order)
+        found.append(seat_of(body, cluster, sure[0] if sure else first, doubt))
     said = frame.stated.get(key)
     return _with_the_brief(body, found, said) if said else tuple(found)
 
@@ -166,9 +166,9 @@ def _unknown(
 
 def _why_not(frame: _Frame, key: str, seats: Sequence[Seat], unknown: Mapping[str, Reason]) -> str:
     """Why nothing tells how a beam stands; empty where it is told."""
-    for cluster in frame.clusters[key]:
-        if cluster.whole:
-            return told.lies_along(cluster.candidates[0].contact)
+    whole = [cluster for cluster in frame.clusters[key] if cluster.whole]
+    if whole:
+        return told.lies_along(whole[0].candidates[0].contact)
     doubted = [seat for seat in seats if seat.doubt]
     if doubted:
         return told.unsure(doubted)

@@ -8,7 +8,6 @@ bears no farther in than the beam's own end.
 from __future__ import annotations
 
 import math
-from collections import Counter
 from collections.abc import Iterable, Mapping, Sequence, Set
 from typing import NamedTuple
 
@@ -52,16 +51,20 @@ def carriers_of(
     judged
         Contacts of all that spans, by key.
     """
-    counts = Counter(member.step_id for member in members)
-    return Carriers(
-        boxes={m.step_id: m.box for m in members if not m.plan and counts[m.step_id] == 1},
-        uprights={
-            member.step_id: levels_of(member.box)
-            for member in members
-            if kind_of(member.ifc_class) in HOLDS_MOMENT
-        },
-        unfilled=_unfilled(judged.values(), beams),
-    )
+    boxes: dict[int, Box] = {}
+    uprights: dict[int, tuple[float, float]] = {}
+    twice: set[int] = set()
+    for member in members:
+        step = member.step_id
+        if step in boxes:
+            twice.add(step)
+        if not member.plan:
+            boxes[step] = member.box
+        if kind_of(member.ifc_class) in HOLDS_MOMENT:
+            uprights[step] = levels_of(member.box)
+    for step in twice:
+        del boxes[step]
+    return Carriers(boxes, uprights, _unfilled(judged.values(), beams))
 
 
 def _unfilled(judged: Iterable[Sequence[Judged]], beams: Sequence[Beam]) -> set[int]:
