@@ -18,8 +18,9 @@ class Overrules(NamedTuple):
     """How an end of a line stands that runs into a column or a wall"""
     bearings: Mapping[tuple[str, str], float] = {}
     """Width of the bearing at an end ("start", "end") of a beam [mm]"""
-    depths: Mapping[str, float] = {}
-    """Of the beams, half of which a span reaches into a wide bearing at most [mm]"""
+    sizes: Mapping[str, tuple[float, float]] = {}
+    """Depth of the beams, half of which a span reaches into a wide bearing at most, and length
+    [mm]"""
     spans: Mapping[str, Given] = {}
     """Length of the span of a beam [mm]"""
 
@@ -68,20 +69,24 @@ def _end(span: LineSpan, end: SpanEnd, which: str, said: Overrules) -> SpanEnd:
     width = said.bearings.get((span.beam, which), 0.0)
     if not width or end.seat is None or end.seat.place != which:
         return end
-    return _borne(end, which, width, said.depths[span.beam])
+    return _borne(end, which, width, *said.sizes[span.beam])
 
 
-def _borne(end: SpanEnd, which: str, width: float, depth: float) -> SpanEnd:
-    """An end on a bearing of stated width, which begins where its support does."""
+def _borne(end: SpanEnd, which: str, width: float, depth: float, length: float) -> SpanEnd:
+    """An end on a bearing of stated width: within the beam where that lies on it, beyond the end
+    where that meets its face."""
     seat = end.seat
     assert seat is not None
-    half = min(width, depth) / 2.0
+    if not seat.carrier:
+        return end._replace(face=width if which == "start" else length - width)
+    half, lies_on = min(width, depth) / 2.0, seat.way == "below"
     if which == "start":
-        low, high = seat.low, seat.low + width
-        face, centre = high, high - half
+        low = max(seat.low, 0.0) if lies_on else seat.high - width
+        high, face, centre = low + width, low + width, low + width - half
     else:
-        low, high = seat.high - width, seat.high
-        face, centre = low, low + half
+        high = min(seat.high, length) if lies_on else seat.low + width
+        low, face, centre = high - width, high - width, high - width + half
+    face = min(max(face, 0.0), length)
     x = face if end.kind == "fixed" and end.x == end.face else centre
     return SpanEnd(end.kind, x, face, seat._replace(low=low, high=high, x=centre))
 

@@ -9,12 +9,12 @@ import numpy as np
 
 from ifccheck.analysis.combinations import factor_array
 from ifccheck.analysis.effects import Effects, case_share, combine
-from ifccheck.analysis.loads import LoadTable
+from ifccheck.analysis.loads import LINE, LoadTable
 from ifccheck.analysis.parts import Parts
 from ifccheck.analysis.statics import CaseEffects, effects_at
 from ifccheck.beam import Case
-from ifccheck.mechanics.arrays import Floats, Ints
-from ifccheck.rating.assembly import frame_of
+from ifccheck.mechanics.arrays import Bools, Floats, Ints
+from ifccheck.rating.assembly import Frame, frame_of
 from ifccheck.rating.batch import Batch
 from ifccheck.rating.loaded import solved_frame
 
@@ -70,8 +70,14 @@ def arising(batch: Batch, cases: Sequence[Case]) -> Arising:
         beam_of=frame.beam_of,
         reactions=frame.parts.whole(effects.reactions),
         end_moments=frame.parts.whole(effects.end_moments),
-        self_weight=frame.loads.take(np.flatnonzero(frame.loads.case == frame.self_case)),
+        self_weight=frame.loads.take(np.flatnonzero(_weighs(frame))),
     )
+
+
+def _weighs(frame: Frame) -> Bools:
+    """Loads that are weight of the beam itself: reactions of the same case are point loads (L)."""
+    weighs: Bools = (frame.loads.case == frame.self_case) & (frame.loads.kind == LINE)
+    return weighs
 
 
 def _shares(

@@ -79,8 +79,8 @@ def _overrules(
 ) -> Overrules:
     assert brief.frame is not None
     bearings = stated_bearings(brief, matches)
-    depths = {key: _depth(beams[key]) for key, _ in bearings if beams[key].runs}
-    return Overrules(brief.frame.restraint, bearings, depths, spans)
+    sizes = {key: (_depth(beams[key]), beams[key].length) for key, _ in bearings if beams[key].runs}
+    return Overrules(brief.frame.restraint, bearings, sizes, spans)
 
 
 def _depth(beam: Beam) -> float:
