@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass, field, replace
 
-from ifccheck.beam import Bars, Beam, Contact, Given, Load, Model, Reason, Remark
+from ifccheck.beam import Beam, Contact, Given, Load, Model, Reason, Remark
 from ifccheck.brief.cases import cases_of
 from ifccheck.brief.merging import Matches
 from ifccheck.brief.model import Brief
@@ -16,13 +16,10 @@ from ifccheck.demand.standing import standing_in_lines
 from ifccheck.errors import BriefError
 from ifccheck.frame.boxes import section_extent
 from ifccheck.frame.contacts import contacts_of_others, find_contacts
-from ifccheck.frame.joints import Meeting, RunsThrough
+from ifccheck.frame.joints import RunsThrough, by_bars
 from ifccheck.frame.lines import Lines, find_lines
 from ifccheck.frame.spans import Standing
 from ifccheck.units import clipped
-
-RUNS_THROUGH = 20.0
-"""Diameters that a bar goes on past the farther face of the support where it runs through"""
 
 ONE_OF_SEVERAL = Reason(
     "supports unknown: its span is stated, but it makes several or goes on into another beam; state"
@@ -94,23 +91,11 @@ def runs_through(brief: Brief, beams: Mapping[str, Beam]) -> RunsThrough:
     if brief.frame.continuity != "bars":
         always = brief.frame.continuity == "always"
         return lambda meeting: always
-    return lambda meeting: _reaches(beams[meeting.beam], meeting)
-
-
-def _reaches(beam: Beam, meeting: Meeting) -> bool:
-    """Whether drawn bars of its upper half go on past the support."""
-    bars = [bar for each in beam.reinforcement if each.source == "bars" for bar in each.bars]
-    heights = [z for _, z in beam.runs[0].outline.rings[0]]
-    middle = (min(heights) + max(heights)) / 2.0
-    return any(bar.z > middle and _past(bar, meeting) for bar in bars)
-
-
-def _past(bar: Bars, meeting: Meeting) -> bool:
-    if meeting.end == "start":
-        past = meeting.far - (bar.start - bar.start_beyond)
-    else:
-        past = bar.end + bar.end_beyond - meeting.far
-    return past >= RUNS_THROUGH * bar.diameter
+    drawn = {
+        key: [bar for each in beam.reinforcement if each.source == "bars" for bar in each.bars]
+        for key, beam in beams.items()
+    }
+    return by_bars(beams, drawn)
 
 
 def load_bearing(brief: Brief, contacts: Mapping[str, Sequence[Contact]]) -> set[int]:
