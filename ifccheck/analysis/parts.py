@@ -27,6 +27,11 @@ class Parts:
     """Spans of the longest line"""
 
     @property
+    def apart(self) -> bool:
+        """Whether some case has parts for loads that act apart."""
+        return bool(np.diff(self.first).max() > self.places)
+
+    @property
     def cut(self) -> bool:
         """Whether any case has more than one part."""
         return self.case.size >= self.first.size

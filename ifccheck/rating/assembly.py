@@ -169,6 +169,7 @@ def _parts(
         for place in (own.places if own else [0] * len(subject.spans))
     ]
     longest = max([own.spans for own in goes_on if own], default=1)
+    apart = apart or any(own.parts.apart for own in goes_on if own)
     return np.array(places), parts_of([case.by_spans for case in cases], longest, apart=apart)
 
 

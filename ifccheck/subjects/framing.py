@@ -154,6 +154,8 @@ def passed_doubts(
     """
     found: dict[str, list[Reason]] = {}
     for key in reversed(framing.lines.order):
+        for carrier, told in _twisted(framing, beams, key):
+            found.setdefault(carrier, []).append(told)
         why = own.get(key) or (found[key][0].text if key in found else "")
         if not why or key not in beams:
             continue
@@ -162,3 +164,15 @@ def passed_doubts(
                 text = f"reactions not included: not all that acts on {beams[key].mark} is known"
                 found.setdefault(carrier, []).append(Reason(text, blocking=False))
     return found
+
+
+def _twisted(framing: Framing, beams: Mapping[str, Beam], key: str) -> Iterator[tuple[str, Reason]]:
+    """Beams into which one is fixed, whose moment twists them or loads them with one."""
+    if key not in framing.standing:
+        return
+    spans = framing.standing[key].spans
+    kinds = {"start": spans[0].span.start_support.kind, "end": spans[-1].span.end_support.kind}
+    for seat in framing.lines.seats[key]:
+        if seat.carrier_beam in beams and kinds.get(seat.place) == "fixed":
+            text = f"torsion: {beams[key].mark} is fixed into it, and its moment is not followed"
+            yield seat.carrier_beam, Reason(text, blocking=False)
