@@ -7,6 +7,7 @@ from dataclasses import dataclass
 from enum import StrEnum
 
 from ifccheck.beam import Beam, Model
+from ifccheck.framed import Framed
 
 
 class State(StrEnum):
@@ -63,6 +64,8 @@ class Survey:
     brief_sha256: str = ""
     bars_in_file: int = 0
     """Bars and meshes that the model holds, whosever they are"""
+    framed: Framed | None = None
+    """What the beams would stand on by what the model shows, and the brief where it says so"""
 
     @property
     def beams_with_bars(self) -> int:

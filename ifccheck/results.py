@@ -11,6 +11,7 @@ from typing import TYPE_CHECKING
 from ifccheck.beam import Beam, Case, Combination, Model, Reason, Remark
 from ifccheck.brief.model import Brief
 from ifccheck.findings import Finding
+from ifccheck.framed import Framed
 from ifccheck.outputs import Content
 from ifccheck.publish.report import Assumption, CaseSummary, Report
 from ifccheck.publish.words import CURES, NO_LOAD, head_of
@@ -62,12 +63,13 @@ def report_of(
         brief_sha256=brief.sha256,
         model=model,
         ratings=ratings,
-        sheet=_sheets(model, batches, ratings, cases),
+        sheet=_sheets(model, batches, ratings, cases, gathered.framed),
         spans={subject.beam.key: subject.spans for subject in gathered.subjects},
         cases=tuple(_case(case, gathered, ratings) for case in cases if case.rated),
         combinations=tuple(combinations),
         remarks=tuple(remarks),
         assumptions=_assumptions(ratings.values()),
+        framed=gathered.framed,
     )
 
 
@@ -76,6 +78,7 @@ def _sheets(
     batches: Sequence[Batch],
     ratings: Mapping[str, Rating],
     cases: Sequence[Case],
+    framed: Framed | None,
 ) -> Callable[[str], Sheet]:
     """A function that makes the sheet of a beam; a batch's details are worked out when first
     asked for."""
@@ -97,7 +100,7 @@ def _sheets(
             makers[number] = sheet_maker(batch, own, cases)
         return makers[number](row)
 
-    return sheet
+    return (lambda key: replace(sheet(key), line=framed.lines.get(key))) if framed else sheet
 
 
 def _case(case: Case, gathered: Gathered, ratings: Mapping[str, Rating]) -> CaseSummary:

@@ -26,6 +26,7 @@ from ifccheck.beam import (
     RatedSpan,
     Stirrups,
 )
+from ifccheck.framed import FramedLine
 from ifccheck.rating.batch import Batch
 from ifccheck.rating.results import LimitStateRating, Rating
 from ifccheck.rating.runs import outline_of
@@ -36,6 +37,7 @@ from ifccheck.units import show, show_ratio
 
 Floats = npt.NDArray[np.float64]
 Ints = npt.NDArray[np.intp]
+Bools = npt.NDArray[np.bool_]
 
 NOTHING_DEMANDED = "nothing demanded"
 """Outcome of a check that no combination asks anything of"""
@@ -67,6 +69,12 @@ class CaseShare:
     """Unfactored [N*mm]"""
     shear: float
     """Unfactored [N]"""
+    of_spans: int = 0
+    """Spans of the line where the case acts span by span; 0 where it acts as a whole"""
+    spans: tuple[int, ...] = ()
+    """Those of them that it loads here, from 0"""
+    lifting: tuple[int, ...] = ()
+    """Those of them where reactions of beams that rest on it lift"""
 
 
 @dataclass(frozen=True, slots=True)
@@ -137,6 +145,8 @@ class Sheet:
     bar_yield: tuple[Given, ...] = ()
     """The yield strength that each entry of ``bars`` was rated with, where it was rated"""
     stirrup_yield: tuple[Given, ...] = ()
+    line: FramedLine | None = None
+    """That the beam belongs to; None where the brief states how it stands"""
 
 
 @dataclass(frozen=True, slots=True)
@@ -296,9 +306,22 @@ def _case_shares(
         CaseShare(
             case.name, case.nature, float(shares.factor[k, row]), float(shares.moment[k, row]),
             float(shares.shear[k, row]),
+            *_by_spans(shares.acting[k][:, row], arisen.places, subject),
         )
         for k, case in _acting(arisen, subject)
     )  # fmt: skip
+
+
+def _by_spans(
+    acting: Bools, places: int, subject: Subject
+) -> tuple[int, tuple[int, ...], tuple[int, ...]]:
+    """How many spans the line of a beam has, and which of them a case loads and lifts, of the
+    parts of the case that act."""
+    if acting.size == 1 or not (subject.continuity or any(load.apart for load in subject.loads)):
+        return 0, (), ()
+    pressing, lifting = (np.flatnonzero(part) for part in (acting[:places], acting[places:]))
+    spans = subject.continuity.spans if subject.continuity else 1
+    return spans, tuple(pressing.tolist()), tuple(lifting.tolist())
 
 
 def _reactions(arisen: Arising, subject: Subject, row: int) -> tuple[CaseReaction, ...]:

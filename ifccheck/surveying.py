@@ -33,7 +33,7 @@ from ifccheck.pipeline import (
 from ifccheck.publish.words import head_of
 from ifccheck.standards import Options, Standard
 from ifccheck.standards.discovery import all_standards
-from ifccheck.subjects import gather
+from ifccheck.subjects import framed_by_the_model, gather
 
 
 @dataclass(frozen=True)
@@ -88,6 +88,7 @@ def _survey(read: Read, plan: Plan, say: Say) -> Survey:
         brief_name=plan.brief.file_name,
         brief_sha256=plan.brief.sha256,
         bars_in_file=bars_in_file(read.opened),
+        framed=gathered.framed or framed_by_the_model(model),
     )
 
 

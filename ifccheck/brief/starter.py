@@ -118,6 +118,12 @@ def _defaults(models: Sequence[StarterModel], names: _Names) -> Iterator[str]:
     )
     yield '#supports = ["?", "?"]'
     yield from _prose(
+        "Or leave supports out and write [frame], a table of its own with nothing in it: the model"
+        " then tells what beams stand on, beams in one line go on into each other where bars run"
+        " through, and each passes its reactions on to what carries it. The survey shows what every"
+        " beam would stand on; entries of [[supports]] overrule it."
+    )
+    yield from _prose(
         "Slabs that beams are cast with count as their flanges only where you say so."
     )
     yield "#slab_flanges = true"

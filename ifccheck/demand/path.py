@@ -22,6 +22,7 @@ from ifccheck.analysis.stiffness import with_varying_stiffness
 from ifccheck.beam import Beam, Case, Load, Reason
 from ifccheck.demand.rows import Rows, curvature_on, line_table, loads_on, nodes_of, rows_of
 from ifccheck.frame.beam_lines import BeamLine, Node
+from ifccheck.framed import Balance
 from ifccheck.mechanics.arrays import Floats
 from ifccheck.rating.subject import Continuity
 from ifccheck.units import show
@@ -30,26 +31,6 @@ IN_A_RING = "supports unknown: what carries it is itself carried by what it carr
 
 _NOTHING = 1e-9
 """Part of all that a line carries in a case below which a reaction is none"""
-
-
-class Balance(NamedTuple):
-    """What becomes of the loads of one case on the beams of one storey, unfactored [N]."""
-
-    storey: str
-    case: str
-    applied: float
-    """Self weight and the loads of the brief"""
-    received: float
-    """From beams that rest on them"""
-    passed_on: float
-    """To beams that carry them"""
-    ground: float
-    """To columns, walls and all else that stands"""
-
-    @property
-    def difference(self) -> float:
-        """What is lost or gained."""
-        return self.applied + self.received - self.passed_on - self.ground
 
 
 @dataclass(frozen=True, slots=True)
@@ -231,7 +212,7 @@ def _place_on(beam: Beam, x: float, carrier: Beam) -> float:
 
 
 def _reaction(beam: Beam, carrier: str, case: str, force: float, x: float, apart: bool) -> Load:
-    told = f"{show(force, 'force')} at {show(x, 'length')} from {beam.mark}"
+    told = f"{show(force, 'force')} from {beam.mark}"
     return Load(
         carrier, case, "point", x, x, (force, force),
         origin=f"reaction of {beam.mark} ({beam.ifc_class})",

@@ -7,6 +7,7 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 
 from ifccheck.beam import RatedSpan, Span
+from ifccheck.publish.framed_words import acting_words
 from ifccheck.publish.quantities import quantity_words
 from ifccheck.sheet import CaseReaction, CaseShare, Sheet
 from ifccheck.units import show
@@ -23,6 +24,8 @@ class ShareRow:
     shear: str
     factored_moment: str
     factored_shear: str
+    acting: str = ""
+    """On which spans of its line it acts, where it does so span by span"""
 
 
 @dataclass(frozen=True, slots=True)
@@ -87,6 +90,7 @@ def _share_row(share: CaseShare) -> ShareRow:
         shear=_force(share.shear),
         factored_moment=_moment(_factored(share.factor, share.moment)),
         factored_shear=_force(_factored(share.factor, share.shear)),
+        acting=acting_words(share),
     )
 
 

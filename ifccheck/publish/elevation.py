@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Sequence
+from collections.abc import Sequence
 from dataclasses import dataclass
 from functools import cached_property
 from itertools import pairwise
@@ -22,8 +22,8 @@ from ifccheck.beam import (
     Support,
 )
 from ifccheck.notation import bars_in_a_row
+from ifccheck.publish.load_words import named_load, single_loads
 from ifccheck.publish.openings import drawn_opening
-from ifccheck.publish.quantities import typographic
 from ifccheck.publish.svg import (
     circle,
     closed_path,
@@ -275,15 +275,24 @@ def _support(
     y = frame.z(soffit)
     if support.kind == "free":
         return ""
-    if support.kind == "pinned":
+    if support.kind in ("pinned", "continuous"):
         ends = frame.x(face), frame.x(face + side * support.bearing)
         x0, x1 = (x - 3.0, x + 3.0) if abs(ends[1] - ends[0]) < 6.0 else (min(ends), max(ends))
         triangle = closed_path([(x, y), (x - 6, y + 11), (x + 6, y + 11)])
-        return path(triangle, "support") + path(segment(x0, y, x1, y), "bearing")
+        beyond = _goes_on(frame, side, y) if support.kind == "continuous" else ""
+        return beyond + path(triangle, "support") + path(segment(x0, y, x1, y), "bearing")
     edge = x + side * 7.0
     top, foot = frame.top - 6.0, y + 6.0
     wall = closed_path([(x, top), (edge, top), (edge, foot), (x, foot)])
     return path(wall, "support fixed")
+
+
+def _goes_on(frame: Frame, side: float, y: float) -> str:
+    """The beam that this one goes on into, from its end."""
+    x = frame.x(0.0 if side < 0.0 else frame.length)
+    ends = x, x + side * 16.0
+    return path(segment(ends[0], frame.top, ends[1], frame.top) + segment(ends[0], y, ends[1], y),
+                "edge")  # fmt: skip
 
 
 def _span_lines(spans: Sequence[RatedSpan], length: float, frame: Frame, y: float) -> str:
@@ -307,9 +316,11 @@ class _Loads:
         lines = [load for load in loads if load.kind == "line"]
         weight = [load for load in lines if load.case == SELF]
         self.bands = [[load] for load in lines if load.case != SELF] + [weight] * bool(weight)
-        self.singles = [load for load in loads if load.kind != "line"]
+        self.singles = single_loads(load for load in loads if load.kind != "line")
         self.hung = hung
-        self.rows = _rows(self.singles)
+        merged = len(self.singles) < sum(load.kind != "line" for load in loads)
+        self.rows = [i % (6 if merged else 3) for i in range(len(self.singles))]
+        """A row for each load's words, so that neighbours do not print over each other"""
 
     @property
     def height(self) -> float:
@@ -340,27 +351,9 @@ class _Loads:
             parts.append(label(WIDTH / 2.0, base + away * 4.0, words, "load-name"))
             base += away * 12.0
         foot = frame.bottom if self.hung else frame.top
-        for load, row in zip(self.singles, self.rows, strict=True):
-            parts.append(_single_load(load, frame, foot, base, away, row))
+        for (load, words), row in zip(self.singles, self.rows, strict=True):
+            parts.append(_single_load(load, words, frame, foot, base, away, row))
         return "".join(parts)
-
-
-def _rows(loads: Iterable[Load]) -> list[int]:
-    """A row for each load's words, so that neighbours do not print over each other."""
-    ordered = list(loads)
-    return [i % 3 for i in range(len(ordered))]
-
-
-def load_words(load: Load) -> str:
-    """Return a load as people write it."""
-    if load.text:
-        return typographic(load.text)
-    if load.kind == "point":
-        return f"{show(load.values[0], 'force')} at {show(load.start, 'length')}"
-    if load.kind == "moment":
-        return f"{show(load.values[0], 'moment')} at {show(load.start, 'length')}"
-    first, last = (show(value, "line_load") for value in load.values)
-    return first if first == last else f"{first} to {last}"
 
 
 def _line_load(load: Load, frame: Frame, base: float, away: float, peak: float) -> str:
@@ -374,7 +367,7 @@ def _line_load(load: Load, frame: Frame, base: float, away: float, peak: float) 
 def _band_name(band: Sequence[Load], frame: Frame, base: float, away: float) -> str:
     """What the loads of one band are: one load by its words, several by their least and most."""
     x0, x1 = frame.x(band[0].start), frame.x(band[-1].end)
-    words = _named(band[0])
+    words = named_load(band[0])
     if len(band) > 1:
         values = [value for load in band for value in load.values]
         both = dict.fromkeys(show(value, "line_load") for value in (min(values), max(values)))
@@ -383,22 +376,20 @@ def _band_name(band: Sequence[Load], frame: Frame, base: float, away: float) -> 
     return label((x0 + x1) / 2.0, y, words, "load-name")
 
 
-def _named(load: Load) -> str:
-    return f"{load.case}: {load_words(load)}"
-
-
-def _single_load(load: Load, frame: Frame, foot: float, base: float, away: float, row: int) -> str:
+def _single_load(
+    load: Load, words: str, frame: Frame, foot: float, base: float, away: float, row: int
+) -> str:
     x, tip, tail = frame.x(load.start), foot + away * 1.5, base + away * (ARROW + 11.0 * row)
-    room = len(_named(load)) * LETTER_WIDTH / 2.0
+    room = len(words) * LETTER_WIDTH / 2.0
     middle = min(max(x, LEFT / 4.0 + room), WIDTH - 4.0 - room)
-    words = label(middle, tail + away * 5.0 + 1.5, _named(load), "load-name halo")
+    named = label(middle, tail + away * 5.0 + 1.5, words, "load-name halo")
     if load.kind == "moment":
         turning = _turning(x, (frame.top + frame.bottom) / 2.0, load.values[0])
-        return path(turning, "moment") + path(segment(x, tail, x, frame.top), "leader") + words
+        return path(turning, "moment") + path(segment(x, tail, x, frame.top), "leader") + named
     downward = load.values[0] >= 0.0
     head_at, point = (max(tip, tail), 1.0) if downward else (min(tip, tail), -1.0)
     head = closed_path([(x, head_at), (x - 3, head_at - 7 * point), (x + 3, head_at - 7 * point)])
-    return path(segment(x, tail, x, tip), "force") + path(head, "head") + words
+    return path(segment(x, tail, x, tip), "force") + path(head, "head") + named
 
 
 def _turning(x: float, y: float, moment: float) -> str:

@@ -9,6 +9,7 @@ from dataclasses import dataclass
 from markupsafe import Markup
 
 from ifccheck.beam import Combination, Verdict
+from ifccheck.publish.equilibrium import EquilibriumRow, equilibrium_rows, equilibrium_words
 from ifccheck.publish.page import MOST_NAMED, Tally, dress, figures, left_out, proportion
 from ifccheck.publish.plan import framing_plans
 from ifccheck.publish.report import Assumption, CaseSummary, Counts, Report
@@ -42,7 +43,7 @@ def render(report: Report) -> str:
     numbers = {row.key: row.number for row in rows}
     tallies = _tallies(report.counts)
     return template("page.html.j2").render(
-        **dress(),
+        **dress(report.framed),
         model=report.model,
         title_block=_title_block(report),
         counts=report.counts,
@@ -51,7 +52,7 @@ def render(report: Report) -> str:
         covered=covered_phrases(report.ratings.values()),
         worst=[row for row in rows if row.utilisation][:WORST],
         cases=[_case(case, report, numbers) for case in report.cases],
-        plans=figures(framing_plans(report.model, report.ratings, numbers)),
+        plans=figures(framing_plans(report.model, report.ratings, numbers, report.framed)),
         legend=[(name, words) for _, name, words in BANDS]
         + [("over", "falls short"), ("none", "not rated")],
         storeys=storey_names(report.model),
@@ -64,6 +65,8 @@ def render(report: Report) -> str:
         doubts=[remark for remark in report.remarks if remark.kind == "doubt"],
         remarks=[remark for remark in report.remarks if remark.kind != "doubt"],
         sources=_sources(report),
+        equilibrium=_equilibrium(report, numbers),
+        most_named=MOST_NAMED,
         combined=_combined(report.combinations),
         combinations=_combinations(report),
         cautions=CAUTIONS,
@@ -169,6 +172,27 @@ def _assumption(assumption: Assumption, report: Report) -> _Assumption:
         more = len(marks) - MOST_NAMED
         marks = [*marks[:MOST_NAMED], f"and {more} more"]
     return _Assumption(assumption.text, str(len(assumption.beams)), ", ".join(marks))
+
+
+@dataclass(frozen=True, slots=True)
+class _Equilibrium:
+    words: str
+    rows: list[EquilibriumRow]
+    left_out: list[tuple[int, str]]
+    balances: bool
+
+
+def _equilibrium(report: Report, numbers: Mapping[str, int]) -> _Equilibrium | None:
+    framed = report.framed
+    if framed is None:
+        return None
+    rows = equilibrium_rows(framed)
+    return _Equilibrium(
+        words=(words := equilibrium_words(framed))[0].upper() + words[1:],
+        rows=rows,
+        left_out=[(numbers[key], report.beam(key).mark) for key in framed.unknown],
+        balances=all(row.balances for row in rows),
+    )
 
 
 @dataclass(frozen=True, slots=True)

@@ -14,6 +14,11 @@ nothing); factor ``rated``, ``not limited`` or ``not rated``.
                   unrated_in_path
     combinations  name, kind, labels (names by which beams call it where the rest of it does not
                   act), factors: case -> [unfavourable, favourable]
+    frame         only where the brief has [frame]; lines: of each its spans in order (beam,
+                  against: its x runs against the line, start and end along the beam: x, kind,
+                  carrier, direct, stated by the brief alone); unknown: beam, reason; balance:
+                  storey, case, own (self weight with it), received, passed_on, ground,
+                  difference, balances
     beams         key, global_id, ordinal, mark, name, tag, type, storey, material, length,
                   span (start, end, supports), verdict, utilisation, governing (name of a limit
                   state), limit_states, rated_cases, reasons, remarks, basis, checked,
@@ -35,6 +40,7 @@ from collections.abc import Iterator, Sequence
 from typing import Any
 
 from ifccheck.beam import Combination, OutOfScope, Remark
+from ifccheck.framed import Framed, FramedEnd, FramedLine, balances
 from ifccheck.publish.json_beams import beam_texts
 from ifccheck.publish.report import CaseSummary, Report
 from ifccheck.tables import factor_state
@@ -109,6 +115,7 @@ def _report(report: Report) -> Data:
         "combinations": [
             _combination(*each) for each in zip(report.combinations, report.labels, strict=True)
         ],
+        **({"frame": _frame(report.framed)} if report.framed else {}),
         "beams": beam_texts(report),
         "out_of_scope": [_out_of_scope(member) for member in report.model.out_of_scope],
         "assumptions": [{"text": a.text, "beams": list(a.beams)} for a in report.assumptions],
@@ -134,6 +141,45 @@ def _case(case: CaseSummary) -> Data:
         "beams_reached": case.beams_reached,
         "unrated_in_path": list(case.unrated_in_path),
     }
+
+
+def _frame(framed: Framed) -> Data:
+    return {
+        "lines": [_line(line) for line in framed.all_lines],
+        "unknown": [{"beam": key, "reason": why} for key, why in framed.unknown.items()],
+        "balance": [
+            {
+                "storey": row.storey,
+                "case": row.case,
+                "own": _finite(row.applied),
+                "received": _finite(row.received),
+                "passed_on": _finite(row.passed_on),
+                "ground": _finite(row.ground),
+                "difference": _finite(row.difference),
+                "balances": balances(row),
+            }
+            for row in framed.balance
+        ],
+    }
+
+
+def _line(line: FramedLine) -> list[Data]:
+    return [
+        {
+            "beam": span.beam,
+            "against": span.reversed,
+            "start": _span_end(span.start),
+            "end": _span_end(span.end),
+        }
+        for span in line.spans
+    ]
+
+
+def _span_end(end: FramedEnd) -> Data:
+    told: Data = {"x": end.x, "kind": end.kind}
+    if end.kind != "free":
+        told |= {"carrier": end.carrier, "direct": end.direct, "stated": end.stated}
+    return told
 
 
 def _combination(combination: Combination, labels: Sequence[str]) -> Data:

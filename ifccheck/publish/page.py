@@ -12,6 +12,7 @@ from typing import Any
 from markupsafe import Markup
 
 from ifccheck.beam import OutOfScope
+from ifccheck.framed import Framed
 from ifccheck.publish import tint
 from ifccheck.publish.plan import Plan
 from ifccheck.publish.rows import GAUGE, GAUGE_END
@@ -23,14 +24,18 @@ MOST_NAMED = 12
 """Marks named in a list before the rest are only counted."""
 
 
-def dress() -> dict[str, Any]:
-    """Return style, script and the policy that admits these and nothing else."""
-    style, script = _style(), asset("page.js")
+def dress(framed: Framed | None = None) -> dict[str, Any]:
+    """Return style, script and the policy that admits these and nothing else.
+
+    ``framed`` is how the beams were stood, where the page shows it.
+    """
+    style, script = _style() + (asset("frame.css") if framed else ""), asset("page.js")
     return {
         "policy": _policy(style, script),
         "style": Markup(style),
         "script": Markup(script),
         "sheets_per_block": SHEETS_PER_BLOCK,
+        "framed": framed,
     }
 
 

@@ -11,7 +11,10 @@ import numpy as np
 import numpy.typing as npt
 
 from ifccheck.beam import Axis, Beam, Box, Member, Model, Outline, Run
+from ifccheck.framed import Framed
+from ifccheck.publish.framed_words import standing_words
 from ifccheck.publish.plan_labels import Labels, Stroke
+from ifccheck.publish.plan_layers import Shown, frame_layers
 from ifccheck.publish.svg import (
     Place,
     closed_path,
@@ -92,21 +95,28 @@ class _Sheet:
 
 
 def framing_plans(
-    model: Model, ratings: Mapping[str, Rating], rows: Mapping[str, int]
+    model: Model,
+    ratings: Mapping[str, Rating],
+    rows: Mapping[str, int],
+    framed: Framed | None = None,
 ) -> tuple[Plan, ...]:
     """Return a plan for every storey with beams, tinted by how much each beam is used."""
-    looks = {beam.key: _rated(beam, ratings[beam.key]) for beam in model.beams}
-    return storey_plans(model, looks, rows)
+    looks = {beam.key: _rated(beam, ratings[beam.key], framed) for beam in model.beams}
+    return storey_plans(model, looks, rows, framed)
 
 
 def storey_plans(
-    model: Model, looks: Mapping[str, Look], rows: Mapping[str, int]
+    model: Model,
+    looks: Mapping[str, Look],
+    rows: Mapping[str, int],
+    framed: Framed | None = None,
 ) -> tuple[Plan, ...]:
     """Return a plan for every storey with beams, from the lowest up.
 
-    ``looks`` tells how each beam is shown, ``rows`` the number of the table row that it links to.
+    ``looks`` tells how each beam is shown, ``rows`` the number of the table row that it links to;
+    ``framed`` how the beams were stood, where that is shown too.
     """
-    members = _Members(model)
+    members = _Members(model, framed)
     heights = {storey.name: storey.elevation for storey in model.storeys}
     by_storey: dict[str, list[Beam]] = {}
     for beam in model.beams:
@@ -117,18 +127,21 @@ def storey_plans(
     )
 
 
-def _rated(beam: Beam, rating: Rating) -> Look:
+def _rated(beam: Beam, rating: Rating, framed: Framed | None) -> Look:
     told, used = f"{beam.mark}: {verdict_phrase(rating)}", ""
     if not math.isnan(rating.utilisation):
         used = utilisation_words(rating.utilisation)
         told += f", utilisation {used}"
+    if framed is not None:
+        told += f"; {standing_words(framed, beam.key)}"
     return Look(band(rating), told, used, always=falls_short(rating.utilisation))
 
 
 class _Members:
-    """The boxes of all members, seen from above."""
+    """The boxes of all members, seen from above, and how the beams among them were stood."""
 
-    def __init__(self, model: Model) -> None:
+    def __init__(self, model: Model, framed: Framed | None) -> None:
+        self.framed = framed
         beams = {beam.step_id for beam in model.beams}
         self.hulls = {m.step_id: _hull(m.box) for m in model.members if m.step_id in beams}
         self.others = [
@@ -197,6 +210,12 @@ def _plan(
     shapes.sort(key=lambda s: DRAW_ORDER.index(looks[s.beam.key].kind))
     parts = [path(closed_path(map(sheet.place, hull)), kind) for kind, hull in others]
     parts += [_beam(shape, sheet, looks[shape.beam.key], rows[shape.beam.key]) for shape in shapes]
+    if members.framed is not None:
+        shown = [
+            Shown(shape.beam, *_ends(shape, sheet), _half_width(shape) * sheet.scale)
+            for shape in shapes
+        ]
+        parts.append(frame_layers(shown, members.framed))
     parts += _marks(shapes, sheet, looks)
     parts.append(_scale_bar(sheet))
     title = escape(plain(f"Framing plan of {name or 'no storey'}"), quote=True)

@@ -10,6 +10,7 @@ from functools import cached_property
 from itertools import combinations
 
 from ifccheck.beam import Beam, Combination, Model, Nature, RatedSpan, Remark, Verdict
+from ifccheck.framed import Framed
 from ifccheck.rating import Rating
 from ifccheck.sheet import Sheet
 
@@ -87,6 +88,8 @@ class Report:
     remarks: tuple[Remark, ...] = ()
     """Remarks on the run as a whole; those on a beam are in its rating"""
     assumptions: tuple[Assumption, ...] = ()
+    framed: Framed | None = None
+    """How beams were stood on what the model shows; None where the brief states it"""
 
     @property
     def standard_name(self) -> str:

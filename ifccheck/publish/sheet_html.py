@@ -22,7 +22,10 @@ from ifccheck.publish.arising import (
     support_words,
 )
 from ifccheck.publish.drawings import diagram, section
-from ifccheck.publish.elevation import bar_words, elevation, load_words, stirrup_words
+from ifccheck.publish.elevation import bar_words, elevation, stirrup_words
+from ifccheck.publish.framed_words import own_line_words
+from ifccheck.publish.line_drawing import line_drawing
+from ifccheck.publish.load_words import load_words
 from ifccheck.publish.quantities import (
     measure_words,
     metres,
@@ -72,6 +75,8 @@ def sheet_html(sheet: Sheet, foot: str) -> str:
         used="" if math.isnan(rating.utilisation) else utilisation_words(rating.utilisation),
         facts=_facts(sheet),
         elevation=Markup(elevation(sheet)),
+        line=own_line_words(sheet.line, sheet.beam.key),
+        line_drawing=Markup(line_drawing(sheet)),
         self_weight=any(load.case == SELF for load in sheet.loads) or not sheet.diagrams,
         diagrams=[Markup(diagram(drawn, length)) for drawn in sheet.diagrams],
         section=Markup(section(sheet)),

@@ -8,7 +8,7 @@ from dataclasses import dataclass
 from markupsafe import Markup
 
 from ifccheck.beam import Beam
-from ifccheck.findings import Finding, State, Survey
+from ifccheck.findings import State, Survey
 from ifccheck.publish.page import Tally, dress, figures, left_out, proportion
 from ifccheck.publish.plan import Look, storey_plans
 from ifccheck.publish.quantities import metres, quantity_words
@@ -23,6 +23,7 @@ from ifccheck.publish.survey_words import (
     lack_words,
     missing_of,
     source_words,
+    stands_words,
     state_band,
     state_words,
     strength_words,
@@ -46,7 +47,7 @@ def render_survey(survey: Survey) -> str:
     missing = [_listed(told, by_key) for told in missing_of(survey, beams)]
     foot = _foot(survey)
     return template("survey.html.j2").render(
-        **dress(),
+        **dress(survey.framed),
         model=survey.model,
         title_block=_title_block(survey),
         beams=len(beams),
@@ -57,7 +58,7 @@ def render_survey(survey: Survey) -> str:
         doubts=[_listed(told, by_key) for told in doubts_of(survey, beams)],
         most=MOST_FIRST,
         to_state=[_listed(told, by_key) for told in to_state_of(survey, beams)],
-        plans=figures(storey_plans(survey.model, _looks(survey), numbers)),
+        plans=figures(storey_plans(survey.model, _looks(survey), numbers, survey.framed)),
         legend=[(state_band(each), str(each)) for each in State],
         storeys=storey_names(survey.model),
         states=[str(each) for each in State],
@@ -73,7 +74,7 @@ def render_survey(survey: Survey) -> str:
         cautions=CAUTIONS_OF_A_SURVEY,
         foot=foot,
         blocks=packed(
-            survey_sheet_html(row.beam, survey.of(row.beam), foot) for row in rows
+            survey_sheet_html(row.beam, survey.of(row.beam), foot, row.stands) for row in rows
         ),
     )  # fmt: skip
 
@@ -137,6 +138,7 @@ class _Row:
     steel: str
     steel_index: int
     meets: str
+    stands: str
 
 
 def _rows(survey: Survey) -> list[_Row]:
@@ -147,20 +149,18 @@ def _rows(survey: Survey) -> list[_Row]:
     ordered = sorted(
         survey.model.beams, key=lambda b: (states[survey.of(b).state], storeys[b.storey])
     )
-    return [
-        _row(i, beam, survey.of(beam), storeys, steel, states) for i, beam in enumerate(ordered)
-    ]
+    return [_row(i, beam, survey, storeys, steel, states) for i, beam in enumerate(ordered)]
 
 
 def _row(
     i: int,
     beam: Beam,
-    finding: Finding,
+    survey: Survey,
     storeys: Mapping[str, int],
     steel: Mapping[str, int],
     states: Mapping[State, int],
 ) -> _Row:
-    strength = beam.concrete_strength
+    strength, finding = beam.concrete_strength, survey.of(beam)
     return _Row(
         number=i,
         beam=beam,
@@ -181,6 +181,7 @@ def _row(
         steel=source_words(beam),
         steel_index=steel[source_words(beam)],
         meets=f"{len(finding.unmet)} unmet" if finding.unmet else "met",
+        stands=stands_words(survey, beam),
     )
 
 
@@ -189,16 +190,17 @@ def _sources_of_steel(beams: Iterable[Beam]) -> list[str]:
 
 
 def _looks(survey: Survey) -> dict[str, Look]:
-    return {beam.key: _look(beam, survey.of(beam)) for beam in survey.model.beams}
+    return {beam.key: _look(beam, survey) for beam in survey.model.beams}
 
 
-def _look(beam: Beam, finding: Finding) -> Look:
+def _look(beam: Beam, survey: Survey) -> Look:
     """How a beam is drawn, and all that was read of it in a few words."""
-    section = section_words(beam) or "section not read"
+    section, finding = section_words(beam) or "section not read", survey.of(beam)
     told = [f"{beam.mark}: {section}", f"concrete {strength_words(beam)}",
             f"steel from {source_words(beam)}", str(finding.state)]  # fmt: skip
     told += [f"missing: {lack_words(text)}" for text in finding.lacks]
     told += [f"doubt: {gist(text)}" for text in finding.doubts]
+    told += filter(None, [stands_words(survey, beam)])
     return Look(state_band(finding.state), "; ".join(told), more=_in_words(beam))
 
 

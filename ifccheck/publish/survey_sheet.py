@@ -46,15 +46,20 @@ def read_sheet(beam: Beam) -> ReadSheet:
     )
 
 
-def survey_sheet_html(beam: Beam, finding: Finding, foot: str) -> str:
-    """Return the sheet of a beam; ``foot`` is printed at the end of each sheet."""
+def survey_sheet_html(beam: Beam, finding: Finding, foot: str, stands: str = "") -> str:
+    """Return the sheet of a beam; ``foot`` is printed at the end of each sheet.
+
+    ``stands`` tells what it would stand on.
+    """
     sheet = read_sheet(beam)
     return template("survey_sheet.html.j2").render(
         beam=beam,
         finding=finding,
         band=state_band(finding.state),
         to_state=[(text, CURES.get(head_of(text), "")) for text in finding.to_state],
-        facts=beam_facts(beam, [("class", f"{beam.ifc_class} #{beam.step_id}")]),
+        facts=beam_facts(
+            beam, [("class", f"{beam.ifc_class} #{beam.step_id}"), ("would stand", stands)]
+        ),
         elevation=Markup(elevation(sheet)),
         section=Markup(section(sheet)),
         read=list(_read(beam)),

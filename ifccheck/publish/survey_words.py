@@ -9,6 +9,7 @@ from dataclasses import dataclass
 from ifccheck.beam import Beam, DescribedZone
 from ifccheck.findings import Finding, State, Survey
 from ifccheck.notation import show_bars, show_stirrups
+from ifccheck.publish.framed_words import standing_words
 from ifccheck.publish.quantities import quantity_words
 from ifccheck.publish.words import NO_LOAD, example_of, head_of, without_numbers
 
@@ -150,6 +151,11 @@ def strength_words(beam: Beam) -> str:
     """Return the concrete strength that was read."""
     strength = beam.concrete_strength
     return quantity_words(strength.value, "stress") if strength else "not stated"
+
+
+def stands_words(survey: Survey, beam: Beam) -> str:
+    """Return what a beam would stand on by the model; empty where that was not looked for."""
+    return standing_words(survey.framed, beam.key) if survey.framed else ""
 
 
 def source_words(beam: Beam) -> str:

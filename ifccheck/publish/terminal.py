@@ -11,6 +11,7 @@ from rich.table import Table
 from rich.text import Text
 
 from ifccheck.beam import Beam, Verdict
+from ifccheck.publish.equilibrium import equilibrium_rows, equilibrium_words, left_out_words
 from ifccheck.publish.quantities import metres
 from ifccheck.publish.report import Report, ratings_in_order
 from ifccheck.publish.terminal_parts import CAUTION, SHORT, Cell, Terminal
@@ -38,11 +39,23 @@ def closing_table(report: Report, console: Console, written: Iterable[Path] = ()
     for part in (_cases(report, to), _short_beams(report, to), _unrated(report, to)):
         if part is not None:
             console.print(part)
-    for line in _doubts(report, to):
+    for line in (*_equilibrium(report, to), *_doubts(report, to)):
         console.print(line)
     console.print(to.text(CAUTION))
     for path in written:
         console.print(to.text(f"  {path}"), soft_wrap=True)
+
+
+def _equilibrium(report: Report, to: Terminal) -> Iterator[Text]:
+    """Whether all that is put on beams which stand in the building comes out at the ground."""
+    framed = report.framed
+    if framed is None:
+        return
+    wrong = any(not row.balances for row in equilibrium_rows(framed))
+    yield to.text(equilibrium_words(framed), style=SHORT if wrong else "")
+    marks = [report.beam(key).mark for key in framed.unknown]
+    if left_out := left_out_words(marks):
+        yield to.text(left_out)
 
 
 def _doubts(report: Report, to: Terminal) -> Iterator[Text]:

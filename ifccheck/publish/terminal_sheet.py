@@ -11,13 +11,15 @@ from rich.text import Text
 
 from ifccheck.beam import Load
 from ifccheck.publish.arising import (
+    ShareRow,
     reaction_rows,
     share_rows,
     span_words,
     support_names,
     support_words,
 )
-from ifccheck.publish.elevation import load_words
+from ifccheck.publish.framed_words import own_line_words
+from ifccheck.publish.load_words import load_words
 from ifccheck.publish.quantities import measure_words, metres
 from ifccheck.publish.terminal_parts import CAUTION, SHORT, Cell, Terminal
 from ifccheck.publish.words import (
@@ -75,6 +77,8 @@ def _facts(sheet: Sheet) -> Iterator[str]:
     if sheet.spans:
         yield f"span: {span_words(sheet)}"
         yield f"supports: {support_words(sheet.spans)}"
+    if line := own_line_words(sheet.line, beam.key):
+        yield line
 
 
 def _remarks(rating: Rating, to: Terminal, *, doubts: bool) -> Iterator[Text]:
@@ -113,7 +117,7 @@ def _check(check: SheetCheck, to: Terminal) -> Iterator[RenderableType]:
             ("arises from", "nature", ">M [kN*m]", ">V [kN]", ">factor", ">M factored",
              ">V factored"),
             [
-                (row.case, row.nature, row.moment, row.shear, row.factor, row.factored_moment,
+                (_arising(row), row.nature, row.moment, row.shear, row.factor, row.factored_moment,
                  row.factored_shear)
                 for row in share_rows(check.shares)
             ],
@@ -121,6 +125,10 @@ def _check(check: SheetCheck, to: Terminal) -> Iterator[RenderableType]:
     yield from _columns(check.lines, to) if to.width >= WIDE else _stacked(check.lines, to)
     short = falls_short(check.utilisation)
     yield to.text(f"utilisation {check.outcome}", style=SHORT if short else "")
+
+
+def _arising(row: ShareRow) -> str:
+    return f"{row.case}\n{row.acting}" if row.acting else row.case
 
 
 def _columns(lines: Sequence[SheetLine], to: Terminal) -> Iterator[RenderableType]:

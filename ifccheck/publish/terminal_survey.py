@@ -11,6 +11,7 @@ from rich.text import Text
 
 from ifccheck.beam import Beam
 from ifccheck.findings import State, Survey
+from ifccheck.publish.framed_words import standing_words
 from ifccheck.publish.survey_words import (
     Told,
     bars_words,
@@ -129,6 +130,7 @@ def _whole(survey: Survey, to: Terminal) -> Iterator[RenderableType]:
         yield to.table((">beams", "missing for a rating", "what settles it"), rows)
     if doubts := doubts_of(survey, beams)[:MOST_LISTED]:
         yield to.table((">beams", "doubt"), [(_count(told), told.shown) for told in doubts])
+    yield from _standing(survey, to)
     ready = len(beams) - survey.count(State.INCOMPLETE)
     doubtful = survey.count(State.DOUBTFUL)
     doubts_only = f" ({doubtful} with doubts)" if doubtful else ""
@@ -137,6 +139,18 @@ def _whole(survey: Survey, to: Terminal) -> Iterator[RenderableType]:
     lost = survey.bars_in_file and not survey.beams_with_bars
     yield to.text(bars_words(survey), style=SHORT if lost else "")
     yield to.text(_requirement(survey))
+
+
+def _standing(survey: Survey, to: Terminal) -> Iterator[RenderableType]:
+    """What every beam would stand on, those first that have no way to stand."""
+    framed = survey.framed
+    if framed is None:
+        return
+    beams = sorted(survey.model.beams, key=lambda beam: beam.key in framed.lines)
+    rows = [(beam.mark, standing_words(framed, beam.key)) for beam in beams[:MOST_GROUPS]]
+    yield to.table(("beam", "would stand, by the model"), rows)
+    if (more := len(beams) - MOST_GROUPS) > 0:
+        yield to.text(f"and {more} more, on the page that --out writes")
 
 
 def _count(told: Told) -> str:

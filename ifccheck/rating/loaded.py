@@ -139,8 +139,8 @@ def _concentrated(frame: Frame, critical: Floats) -> Bools:
     """Whether a concentrated load or moment lies between the face and the section (S, 2).
 
     A line load is one where it is shorter than twice the distance between them, or than a
-    quarter of the distance between the faces: it comes down as a strut of its own. Self weight,
-    which is cut at every run, is none.
+    quarter of the distance between the faces: it comes down as a strut of its own. The weight of
+    the beam itself, which is cut at every run, is none; that of a beam which rests on it is.
     """
     found = np.zeros(critical.shape, dtype=np.bool_)
     loads, faces = frame.loads, frame.faces
@@ -151,7 +151,7 @@ def _concentrated(frame: Frame, critical: Floats) -> Bools:
         (1, loads.end >= critical[loads.beam, 1]),
     ):
         lump = (loads.kind != LINE) | (loads.end - loads.start < short[loads.beam, end])
-        lump &= loads.case != frame.self_case
+        lump &= (loads.case != frame.self_case) | (loads.kind != LINE)
         found[loads.beam[near & lump], end] = True
     return found
 

@@ -29,6 +29,8 @@ class Shares:
     """Unfactored [N*mm] (K, B)"""
     shear: Floats
     """Unfactored [N] (K, B)"""
+    acting: tuple[Bools, ...]
+    """Of each case, which of its parts (P) act there (P, B)"""
 
 
 @dataclass(frozen=True, slots=True)
@@ -45,6 +47,8 @@ class Arising:
     end_moments: Floats
     """Unfactored, just inside the ends of each span [N*mm] (K, S, 2)"""
     self_weight: LoadTable
+    places: int
+    """Spans of the longest line, and so parts of a case that acts span by span"""
 
 
 def arising(batch: Batch, cases: Sequence[Case]) -> Arising:
@@ -71,6 +75,7 @@ def arising(batch: Batch, cases: Sequence[Case]) -> Arising:
         reactions=frame.parts.whole(effects.reactions),
         end_moments=frame.parts.whole(effects.end_moments),
         self_weight=frame.loads.take(np.flatnonzero(_weighs(frame))),
+        places=frame.parts.places,
     )
 
 
@@ -95,12 +100,15 @@ def _shares(
     combined = combine(there, factors)
     at = (combination, arrangement, np.arange(shown.size))
     found = [_share(combined, parts.rows(case), at) for case in range(parts.first.size - 1)]
-    return Shares(*(np.array(column) for column in zip(*found, strict=True)))
+    factor, moment, shear, acting = zip(*found, strict=True)
+    return Shares(np.array(factor), np.array(moment), np.array(shear), acting)
 
 
-def _share(combined: Effects, rows: Ints, at: tuple[Ints, ...]) -> tuple[Floats, Floats, Floats]:
+def _share(
+    combined: Effects, rows: Ints, at: tuple[Ints, ...]
+) -> tuple[Floats, Floats, Floats, Bools]:
     """The factor of a case at each place, and its moment and shear unfactored: of those of its
-    parts that act there, where any does.
+    parts that act there, where any does; and which do.
 
     The factor is factored over unfactored effect, nan without any.
     """
@@ -112,7 +120,7 @@ def _share(combined: Effects, rows: Ints, at: tuple[Ints, ...]) -> tuple[Floats,
     moment, shear = alone.sum(axis=0)
     factored = shares.sum(axis=0)
     factor = np.where(moment != 0.0, _ratio(factored[0], moment), _ratio(factored[1], shear))
-    return factor, moment, shear
+    return factor, moment, shear, acts[:, 0]
 
 
 def _ratio(factored: Floats, alone: Floats) -> Floats:

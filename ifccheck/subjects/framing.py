@@ -8,7 +8,7 @@ from dataclasses import dataclass, field, replace
 from ifccheck.beam import Beam, Contact, Given, Load, Model, Reason, Remark
 from ifccheck.brief.cases import cases_of
 from ifccheck.brief.merging import Matches
-from ifccheck.brief.model import Brief
+from ifccheck.brief.model import Brief, FrameOptions
 from ifccheck.brief.supports import stated_bearings, stated_ends
 from ifccheck.demand.overrules import Overrules, overruled, several_spans
 from ifccheck.demand.path import LoadPath, load_path
@@ -61,7 +61,9 @@ def stand_in_building(
     beams = {beam.key: beam for beam in model.beams}
     stated = stated_ends(brief, matches)
     bearing = load_bearing(brief, contacts)
-    shown = find_lines(model, contacts, others, stated, runs_through(brief, beams), bearing)
+    assert brief.frame is not None
+    through = runs_through(brief.frame, beams)
+    shown = find_lines(model, contacts, others, stated, through, bearing)
     said = _overrules(brief, matches, beams, spans)
     unknown = dict(shown.unknown) | dict.fromkeys(several_spans(shown.lines, said), ONE_OF_SEVERAL)
     lines = shown._replace(lines=overruled(shown.lines, said))
@@ -85,11 +87,10 @@ def _depth(beam: Beam) -> float:
     return high - low
 
 
-def runs_through(brief: Brief, beams: Mapping[str, Beam]) -> RunsThrough:
+def runs_through(options: FrameOptions, beams: Mapping[str, Beam]) -> RunsThrough:
     """Whether a beam passes moment on over a support into another, as the brief has it."""
-    assert brief.frame is not None
-    if brief.frame.continuity != "bars":
-        always = brief.frame.continuity == "always"
+    if options.continuity != "bars":
+        always = options.continuity == "always"
         return lambda meeting: always
     drawn = {
         key: [bar for each in beam.reinforcement if each.source == "bars" for bar in each.bars]

@@ -39,6 +39,7 @@ from ifccheck.frame.openings import Net, net_of
 from ifccheck.frame.reactions import loaded_from_side, resting_between, unknown_reactions
 from ifccheck.frame.slab_flanges import Asked, Counted, counted
 from ifccheck.frame.spans import Standing, stand_alone
+from ifccheck.framed import Framed
 from ifccheck.rating.shape import deep_member, shape_reasons, stances
 from ifccheck.rating.stiffness import varies
 from ifccheck.rating.subject import Subject, Unrated
@@ -46,6 +47,7 @@ from ifccheck.standards import Standard
 from ifccheck.subjects.concrete import Concrete, concrete_of
 from ifccheck.subjects.findings import Findings, Sources
 from ifccheck.subjects.flange_widths import with_widths
+from ifccheck.subjects.framed import framed
 from ifccheck.subjects.framing import (
     Framing,
     hangers,
@@ -77,6 +79,8 @@ class Gathered:
     unrated: tuple[Unrated, ...]
     loads: tuple[Load, ...]
     """On every beam, rated or not"""
+    framed: Framed | None = None
+    """How beams were stood on what the model shows; None where the brief states it"""
 
 
 def gather(model: Model, brief: Brief, matches: Matches, standard: Standard) -> Gathered:
@@ -129,6 +133,7 @@ def gather(model: Model, brief: Brief, matches: Matches, standard: Standard) -> 
         subjects=tuple(each for each in found if isinstance(each, Subject)),
         unrated=tuple(each for each in found if isinstance(each, Unrated)),
         loads=loads,
+        framed=framed(framing) if framing else None,
     )
 
 
