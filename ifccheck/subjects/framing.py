@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass, field, replace
+from functools import cached_property
 
 from ifccheck.beam import Beam, Contact, Given, Load, Model, Reason, Remark
 from ifccheck.brief.cases import cases_of
@@ -28,7 +29,7 @@ ONE_OF_SEVERAL = Reason(
 _HANGERS = "frames into its side: the hanger steel there is not checked"
 
 
-@dataclass(frozen=True, slots=True)
+@dataclass(frozen=True)
 class Framing:
     """How all beams of a model stand in it."""
 
@@ -40,6 +41,11 @@ class Framing:
     path: LoadPath = field(default_factory=LoadPath)
     passed: Mapping[str, Sequence[Reason]] = field(default_factory=dict)
     """Why what rests on a beam does not give all that acts on it"""
+
+    @cached_property
+    def standing_steps(self) -> frozenset[int]:
+        """Step ids of the beams that stand."""
+        return frozenset(self.beams[key].step_id for key in self.standing)
 
 
 def stand_in_building(
@@ -132,10 +138,10 @@ def with_reactions(
 
 
 def settled_steps(framing: Framing, key: str) -> set[int]:
-    """Step ids of what touches a beam and is accounted for: what carries it, and what rests on it
-    and gives its reaction."""
+    """Step ids of what touches a beam and brings no reaction that is not known: what carries it,
+    and every beam that stands, which gives its reactions to what carries that."""
     carriers = {seat.carrier for seat in framing.lines.seats.get(key, ())}
-    return carriers | {framing.beams[other].step_id for other in framing.path.resting.get(key, ())}
+    return carriers | framing.standing_steps
 
 
 def hangers(framing: Framing, key: str) -> Iterator[Remark]:
