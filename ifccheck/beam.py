@@ -31,8 +31,12 @@ from ifccheck.model_loads import ModelCase as ModelCase
 from ifccheck.model_loads import ModelLoads as ModelLoads
 from ifccheck.openings import Opening as Opening
 from ifccheck.openings import ShearLoss as ShearLoss
+from ifccheck.slabs import NO_FLOORS as NO_FLOORS
 from ifccheck.slabs import Flange as Flange
 from ifccheck.slabs import FlangeWidth as FlangeWidth
+from ifccheck.slabs import Floors as Floors
+from ifccheck.slabs import FloorSlab as FloorSlab
+from ifccheck.slabs import Plate as Plate
 from ifccheck.slabs import Slab as Slab
 from ifccheck.standing import Contact as Contact
 from ifccheck.standing import EndKind as EndKind
@@ -360,6 +364,8 @@ class Model:
     """Fields of the brief's mapping of which some beam in scope has a property"""
     loads: ModelLoads = NO_MODEL_LOADS
     """Of its structural analysis models"""
+    floors: Floors = NO_FLOORS
+    """Slabs that bring load to beams; read only where the brief asks for it"""
 
 
 class Load(NamedTuple):

@@ -10,6 +10,11 @@ from ifccheck import __version__, results
 from ifccheck.analysis.combinations import expand_exclusions, not_covered
 from ifccheck.beam import Case, Combination, Model, Remark, Verdict
 from ifccheck.brief.cases import cases_of, combination_remarks, combinations_of
+from ifccheck.brief.floor_entries import (
+    check_floors_carried,
+    check_floors_reached,
+    floor_parts,
+)
 from ifccheck.brief.load import load_brief
 from ifccheck.brief.loads import upward_remarks
 from ifccheck.brief.merging import Matches
@@ -109,12 +114,14 @@ def rate(models: Sequence[Path], brief_path: Path, say: Say = lambda _: None) ->
     reads = read_models(models, plan.brief, say)
     found = tuple(find_beams(read, plan) for read in reads)
     check_reached(plan.brief, found)
+    check_floors_reached(plan.brief, found)
     check_mapping(plan.brief, [read.model.mapped for read in reads], _properties_of(reads))
     check_model_cases(plan.brief, [read.model.loads for read in reads])
     rated = tuple(
         rate_model(read, join(plan.brief, plan.schedule, of_model), plan, found, say)
         for read, of_model in zip(reads, found, strict=True)
     )
+    check_floors_carried(plan.brief, [each.gathered.floors.carried for each in rated])
     return Run(plan, rated)
 
 
@@ -243,7 +250,13 @@ def _choice(opened: OpenedModel, brief: Brief | None) -> Choice:
         return NO_CHOICE
     try:
         scope = brief.scope
-        return choose(opened, scope.also, scope.leave_out, slabs=brief.asks_for_slabs)
+        return choose(
+            opened,
+            scope.also,
+            scope.leave_out,
+            slabs=brief.asks_for_slabs,
+            floors=bool(brief.floors),
+        )
     except BriefError as error:
         raise BriefError(f"{brief.file_name}: {error}") from None
 
@@ -253,12 +266,15 @@ def _mapping(brief: Brief | None) -> dict[str, str]:
 
 
 def find_beams(read: Read, plan: Plan) -> Found:
-    """Keys of the beams that each mark and query of the brief reaches in a model."""
-    beams = read.model.beams
+    """Keys of the beams, or slabs, that each mark and query of the brief reaches in a model."""
+    beams, slabs = read.model.beams, read.model.floors.slabs
+    of_beams = selections(plan.brief, plan.schedule)
+    of_slabs = {place: part for entry in plan.brief.floors for place, part in floor_parts(entry)}
     found: dict[str, tuple[str, ...]] = {}
-    for place, part in selections(plan.brief, plan.schedule).items():
+    for place, part in (of_beams | of_slabs).items():
+        sought = slabs if place in of_slabs else beams
         try:
-            found[place] = select(read.opened, beams, part.beams, part.where)
+            found[place] = select(read.opened, sought, part.beams, part.where)
         except BriefError as error:
             raise BriefError(f"{plan.brief.at(place)}: {error}") from None
     return found
@@ -273,6 +289,7 @@ def rate_model(read: Read, matches: Matches, plan: Plan, found: Sequence[Found],
     )
     remarks = (
         *model.remarks,
+        *gathered.floors.remarks,
         *schedule_remarks(plan.schedule, found),
         *combination_remarks(plan.brief),
         *upward_remarks(plan.brief),

@@ -228,7 +228,8 @@ def floor_plan() -> tuple[Polygon, Polygon, list[tuple[float, float, float, floa
     hole = box(1000, 6000, 3500, 8300)
     lines = [(200.0, 0.0, 5800.0, 0.0), (6200, 0, 11800, 0), (150, 5000, 5850, 5000),
              (6150, 5000, 11850, 5000), (150, 10000, 6150, 10000), (0, 200, 0, 9800),
-             (6000, 150, 6000, 9850), (12000, 150, 12000, 4850), (3000, 150, 3000, 4850)]  # fmt: skip
+             (6000, 150, 6000, 9850), (12000, 150, 12000, 4850),
+             (3000, 150, 3000, 4850)]  # fmt: skip
     return floor, hole, [tuple(map(float, line)) for line in lines]  # type: ignore[misc]
 
 

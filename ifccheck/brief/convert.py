@@ -11,6 +11,7 @@ from ifccheck.brief import schema
 from ifccheck.brief.combination_entries import combination_entries
 from ifccheck.brief.entries import beam_entry, material_entry, support_entry
 from ifccheck.brief.faults import FaultError, Source
+from ifccheck.brief.floor_entries import floor_entry
 from ifccheck.brief.load_entries import load_entry
 from ifccheck.brief.model import (
     Basis,
@@ -44,6 +45,7 @@ def to_brief(table: schema.BriefTable, path: Path, source: Source) -> Brief:
         lines={shown(key): line for key, line in source.lines.items()},
         cases=cases,
         loads=tuple(load_entry(i, t, cases) for i, t in enumerate(table.loads)),
+        floors=tuple(floor_entry(i, t, cases) for i, t in enumerate(table.floors)),
         supports=tuple(support_entry(i, t) for i, t in enumerate(table.supports)),
         beams=tuple(beam_entry(i, t) for i, t in enumerate(table.beams)),
         materials=tuple(material_entry(i, t) for i, t in enumerate(table.materials)),

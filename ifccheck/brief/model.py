@@ -31,6 +31,10 @@ Continuity = Literal["bars", "always", "never"]
 what lies on its top."""
 
 
+FloorSpan = Literal["by shape", "two ways", "one way"]
+"""How slabs span: one way where a panel is more than twice as long as wide, or always so"""
+
+
 SlabBars = Literal["anchored"]
 """What the engineer states of the bars of slabs that lie in the flange of a beam"""
 
@@ -163,6 +167,27 @@ class MaterialEntry:
     aggregate_size: float | None
 
 
+@dataclass(frozen=True, slots=True)
+class FloorEntry:
+    """One entry of ``[[floors]]``: what slabs bring to the beams under them."""
+
+    place: str
+    selection: Selection | None
+    """Which slabs are meant; None for all"""
+    optional: bool
+    """True where it may reach no slab, or no beam"""
+    case: str
+    area: float
+    """[N/mm2]"""
+    area_text: str
+    self_weight: bool
+    span: FloorSpan
+    direction: tuple[float, float] | None
+    """Unit vector in plan along which slabs span one way; None for the short way of each panel"""
+    walls: bool | None
+    """Whether walls under slabs carry; None where the model tells it of each"""
+
+
 Entry = LoadEntry | SupportEntry | BeamEntry | MaterialEntry
 """What has a selection: ``place``, ``selection`` and ``optional``."""
 
@@ -273,6 +298,7 @@ class Brief:
     cases: tuple[Case, ...]
     """As declared, without ``self``."""
     loads: tuple[LoadEntry, ...] = ()
+    floors: tuple[FloorEntry, ...] = ()
     supports: tuple[SupportEntry, ...] = ()
     beams: tuple[BeamEntry, ...] = ()
     materials: tuple[MaterialEntry, ...] = ()

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Callable
-from typing import Annotated, Any
+from typing import Annotated, Any, Literal
 
 from pydantic import (
     AfterValidator,
@@ -15,6 +15,7 @@ from pydantic import (
 )
 
 from ifccheck.beam import CombinationKind, Face, Nature, SourceName, SupportKind
+from ifccheck.brief.floor_entries import read_direction
 from ifccheck.brief.mark_ranges import expanded
 from ifccheck.brief.model import Continuity, Position, Restraint, SlabBars, SlabFlange
 from ifccheck.brief.places import did_you_mean
@@ -231,6 +232,20 @@ class LoadTable(SelectingTable):
     eccentricity: Length | None = None
 
 
+class FloorTable(Table):
+    """``[[floors]]``"""
+
+    slabs: list[Mark] | None = Field(default=None, min_length=1)
+    where: Query | None = None
+    optional: bool = False
+    case: Name
+    area: Annotated[Written, _written("area_load")] | None = None
+    self_weight: bool = False
+    span: Literal["two ways", "one way"] | None = None
+    direction: Annotated[tuple[float, float], PlainValidator(read_direction)] | None = None
+    walls: bool | None = None
+
+
 class LoadFileTable(Table):
     """``[[load_tables]]``"""
 
@@ -288,6 +303,7 @@ class BriefTable(Table):
     cases: dict[Name, CaseTable] = Field(default_factory=dict)
     loads: list[LoadTable] = Field(default_factory=list)
     load_tables: list[LoadFileTable] = Field(default_factory=list)
+    floors: list[FloorTable] = Field(default_factory=list)
     supports: list[SupportTable] = Field(default_factory=list)
     beams: list[BeamTable] = Field(default_factory=list)
     materials: list[MaterialTable] = Field(default_factory=list)
@@ -302,6 +318,7 @@ _TABLES: dict[str, type[Table]] = {
     "cases": CaseTable,
     "loads": LoadTable,
     "load_tables": LoadFileTable,
+    "floors": FloorTable,
     "supports": SupportTable,
     "beams": BeamTable,
     "materials": MaterialTable,

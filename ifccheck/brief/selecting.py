@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Callable, Iterator, Mapping, Sequence, Set
 
 from ifccheck.beam import Remark
+from ifccheck.brief.floor_entries import floor_parts
 from ifccheck.brief.mark_ranges import expanded
 from ifccheck.brief.model import Brief, Entry, ScheduleRow, Selection
 from ifccheck.brief.places import did_you_mean
@@ -40,7 +41,8 @@ def parts_of(entry: Entry | ScheduleRow) -> Iterator[tuple[str, Selection]]:
 
 
 def join(brief: Brief, rows: Sequence[ScheduleRow], found: Found) -> dict[str, tuple[str, ...]]:
-    """Return the keys of the beams that each entry and row reaches, each beam once.
+    """Return the keys of the beams that each entry and row reaches, each beam once, and those of
+    the slabs that entries of ``[[floors]]`` do.
 
     What each single mark of a row reaches is kept beside.
     """
@@ -50,8 +52,14 @@ def join(brief: Brief, rows: Sequence[ScheduleRow], found: Found) -> dict[str, t
         )
         for entry in (*brief.entries(), *rows)
     }
+    floors = {
+        entry.place: tuple(
+            dict.fromkeys(key for place, _ in floor_parts(entry) for key in found[place])
+        )
+        for entry in brief.floors
+    }
     marks = {place: tuple(found[place]) for row in rows for place, _ in parts_of(row)}
-    return {**entries, **marks}
+    return {**entries, **floors, **marks}
 
 
 def check_scope(brief: Brief, reached: Sequence[Mapping[str, int]]) -> None:

@@ -156,7 +156,7 @@ def _near(
         return found
     import shapely
 
-    places, own = zip(*map(_place, beams), strict=True)
+    places, own = zip(*map(footprint, beams), strict=True)
     tree = shapely.STRtree(_polygons(plans))
     pairs = tree.query(shapely.polygons(list(places)), predicate="intersects")
     (soffit, top), (bottom, upper) = np.array(own)[pairs[0]].T, np.array(heights)[pairs[1]].T
@@ -182,7 +182,7 @@ def _polygons(plans: Sequence[Plan]) -> NDArray[np.object_]:
     return found
 
 
-def _place(beam: Beam) -> tuple[list[tuple[float, float]], tuple[float, float]]:
+def footprint(beam: Beam) -> tuple[list[tuple[float, float]], tuple[float, float]]:
     """The rectangle that a beam covers in plan, a little grown, and its soffit and top."""
     assert beam.axis is not None
     extents = [extent_of(run.outline) for run in beam.runs]
@@ -297,6 +297,7 @@ class _Around:
                 origin=f"{one.slab.name}, to {limit}",
                 strength=one.slab.strength,
                 on_top=strip.on_top,
+                step=one.slab.step_id,
                 outward=0.0 if strip.on_top else strip.outward,
             )
 

@@ -84,7 +84,7 @@ class Panel(NamedTuple):
 
 def panels_of(outer: Polygon, carriers: Sequence[Carrier]) -> list[Panel]:
     """Cut a floor, and a margin round it that holds the axes beside it, into panels."""
-    from shapely import STRtree, polygonize_full, unary_union
+    from shapely import Polygon, STRtree, polygonize_full, unary_union
 
     margin = max((each.half_width for each in carriers), default=0.0) + 2.0 * TOUCHING
     domain = outer.buffer(margin, join_style="mitre")
@@ -101,7 +101,7 @@ def panels_of(outer: Polygon, carriers: Sequence[Carrier]) -> list[Panel]:
         for edge in names.edges(list(line.coords))
         if edge.carrier >= 0 and names.is_own(edge)
     ]
-    return [_panel(figure, names, loose) for figure in found.geoms]
+    return [_panel(figure, names, loose) for figure in found.geoms if isinstance(figure, Polygon)]
 
 
 def _line(start: Point, end: Point) -> LineString:
@@ -221,12 +221,15 @@ def _target(one: Carrier, others: Sequence[Carrier], domain: BaseGeometry) -> Po
     if place is not None:
         return place
     to_edge = _line(one.end, _ahead(one, REACH)).intersection(domain.boundary)
-    far = [one.along((p.x, p.y)) - one.length for p in _points(to_edge)]
+    far = [one.along(place) - one.length for place in _points(to_edge)]
     return _ahead(one, min(far) + OVERSHOOT) if far else None
 
 
-def _points(figure: BaseGeometry) -> list[BaseGeometry]:
-    return [part for part in getattr(figure, "geoms", [figure]) if part.geom_type == "Point"]
+def _points(figure: BaseGeometry) -> list[Point]:
+    """Corners of what a line has in common with a ring."""
+    from shapely import get_coordinates
+
+    return [(x, y) for x, y in get_coordinates(figure).tolist()]
 
 
 def _ahead(one: Carrier, far: float) -> Point:

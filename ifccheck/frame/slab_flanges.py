@@ -25,6 +25,7 @@ NOT_BESIDE = "no level plate of one thickness was found to reach out from the be
 NOT_INCLUDED = "weight of slab not included"
 ROUNDING = 0.005
 """Share of the slab's weight that the loads may fall short by: the engineer writes three digits"""
+WEIGHED = "slab that counts as a flange is not in the self weight: [[floors]] lays its weight"
 WEIGHT = "slab that counts as a flange is not in the self weight: its weight must be in the loads"
 
 
@@ -47,6 +48,8 @@ class Asked:
     """Names of the permanent cases"""
     loads_complete: bool = False
     """The engineer states that what rests on the beam is in the loads"""
+    weighed: Collection[int] = ()
+    """STEP ids of slabs whose self weight is laid on the beams that carry them"""
 
 
 @dataclass(frozen=True, slots=True)
@@ -90,7 +93,8 @@ def counted(beam: Beam, asked: Asked, loads: Sequence[Load]) -> Counted:
     flanges = tuple(one for one in level if not _weaker(one, asked.strength))
     texts = [*_not_counted(meeting, asked, level), *_told(flanges, asked)]
     remarks = [Remark(beam.key, STAGE, text, "assumption") for text in texts]
-    text = _too_light(beam, flanges, asked, loads) if flanges else ""
+    unweighed = [one for one in flanges if one.step not in asked.weighed]
+    text = _too_light(beam, unweighed, asked, loads) if unweighed else ""
     if text and asked.loads_complete:
         remarks.append(Remark(beam.key, STAGE, text, "doubt"))
     reasons = (Reason(text, blocking=False),) if text and not asked.loads_complete else ()
@@ -143,8 +147,10 @@ def _told(flanges: Sequence[Flange], asked: Asked) -> Iterator[str]:
         yield "slab that counts as a flange is taken to be of the beam's concrete"
     if any(one.on_top for one in flanges):
         yield "slab on top carries no shear: dv is less by its thickness"
-    if flanges:
+    if any(one.step not in asked.weighed for one in flanges):
         yield WEIGHT
+    elif flanges:
+        yield WEIGHED
 
 
 def words(flange: Flange) -> str:

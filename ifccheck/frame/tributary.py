@@ -15,6 +15,7 @@ from collections.abc import Iterator, Sequence
 from typing import TYPE_CHECKING, Literal, NamedTuple
 
 from ifccheck.beam import Point, Ring
+from ifccheck.frame.floor_figures import floor_figure, shifted
 from ifccheck.frame.panels import SLIVER, Carrier, Edge, Panel, panels_of
 
 if TYPE_CHECKING:
@@ -32,6 +33,8 @@ ALONG = math.cos(math.radians(45.0))
 """Least cosine between the span and the normal of an edge that carries it"""
 FILLED = 0.98
 """Part of its hull that a panel covers which is of one simple shape"""
+ROUNDING = 1e-10
+"""Part of a floor that may be lost to rounding where panels meet"""
 
 
 class Share(NamedTuple):
@@ -86,34 +89,22 @@ def shares(
     local = [_moved(each, origin) for each in carriers]
     prepare(figure)
     found: dict[int, list[BaseGeometry]] = {}
-    for panel in panels_of(Polygon(_shifted(rings[0], origin)), local):
+    for panel in panels_of(Polygon(shifted(rings[0], origin)), local):
         if figure.intersects(panel.figure):
             for carrier, cell in _cells(panel, local, span):
                 part = cell if figure.covers(cell) else figure.intersection(cell)
                 if part.area > 0.0:
                     found.setdefault(carrier, []).append(part)
+    shared = sum(part.area for parts in found.values() for part in parts)
+    if figure.area - shared > ROUNDING * figure.area:
+        rest = figure.difference(unary_union([part for parts in found.values() for part in parts]))
+        for carrier, part in _to_nearest(rest, local):
+            found.setdefault(carrier, []).append(part)
     return [Share(carrier, unary_union(parts)) for carrier, parts in sorted(found.items())]
 
 
-def floor_figure(
-    rings: Sequence[Ring], openings: Sequence[Sequence[Ring]], origin: Point = (0.0, 0.0)
-) -> BaseGeometry:
-    """Return a floor without its openings, seen from an origin."""
-    from shapely import Polygon, unary_union
-
-    outer, *voids = (_shifted(ring, origin) for ring in rings)
-    figure: BaseGeometry = Polygon(outer, voids)
-    holes = [Polygon(one, rest) for one, *rest in
-             ([_shifted(ring, origin) for ring in hole] for hole in openings)]  # fmt: skip
-    return figure.difference(unary_union(holes)) if holes else figure
-
-
-def _shifted(ring: Ring, origin: Point) -> list[Point]:
-    return [(x - origin[0], y - origin[1]) for x, y in ring]
-
-
 def _moved(carrier: Carrier, origin: Point) -> Carrier:
-    start, end = _shifted((carrier.start, carrier.end), origin)
+    start, end = shifted((carrier.start, carrier.end), origin)
     return carrier._replace(start=start, end=end)
 
 
@@ -194,9 +185,15 @@ def _span_way(panel: Panel, carriers: Sequence[Carrier], span: Span) -> Point | 
     return way if spans else None
 
 
+def _corners(figure: BaseGeometry) -> list[Point]:
+    from shapely import get_coordinates
+
+    return [(x, y) for x, y in get_coordinates(figure).tolist()]
+
+
 def _short_way(figure: Polygon, least: float) -> Point | None:
     """The short way of the rectangle round a panel, where that is so much longer than wide."""
-    (x0, y0), (x1, y1), (x2, y2), *_ = figure.minimum_rotated_rectangle.exterior.coords
+    (x0, y0), (x1, y1), (x2, y2), *_ = _corners(figure.minimum_rotated_rectangle)
     one, other = (x1 - x0, y1 - y0), (x2 - x1, y2 - y1)
     short, long = sorted((one, other), key=lambda side: math.hypot(*side))
     length = math.hypot(*short)

@@ -7,13 +7,14 @@ from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import fields, replace
 from operator import attrgetter
 
-from ifccheck.beam import Beam, Box, Model, Reinforcement, Remark
+from ifccheck.beam import NO_FLOORS, Beam, Box, Model, Reinforcement, Remark
 from ifccheck.errors import ModelError
 from ifccheck.ifc.analysis_models import read_model_loads
 from ifccheck.ifc.beams import BeamReader, Identity
 from ifccheck.ifc.context import BeamFrame, Context, make_context
 from ifccheck.ifc.described import sets_described
 from ifccheck.ifc.entity import ILL_TYPED
+from ifccheck.ifc.floors import FloorReader
 from ifccheck.ifc.lexer import EXPORT_AGAIN
 from ifccheck.ifc.mapped import fields_held
 from ifccheck.ifc.members import MemberReader, members_of
@@ -107,6 +108,7 @@ def _read(
         remarks=(*opened.remarks, *told),
         unmeasured=members.unmeasured,
         slabs=SlabReader(context, profiles).read() if beams and choice.slabs else (),
+        floors=FloorReader(context, profiles).read() if beams and choice.floors else NO_FLOORS,
         mapped=fields_held(context, (beam.step_id for beam in beams), mapping),
         loads=read_model_loads(context, beams),
     )

@@ -36,6 +36,8 @@ class Choice:
     """How many members each query reaches, by its place in the brief"""
     slabs: bool = False
     """Slabs are wanted, which may count as flanges"""
+    floors: bool = False
+    """And what they bring to beams is wanted"""
     remarks: tuple[Remark, ...] = ()
     """What queries reach that is no beam"""
 
@@ -49,6 +51,7 @@ def choose(
     leave_out: Mapping[str, str],
     *,
     slabs: bool = False,
+    floors: bool = False,
 ) -> Choice:
     """Answer the queries of the brief, each given by its place.
 
@@ -68,6 +71,7 @@ def choose(
         left_out={step_id: leave_out[place] for place, found in left.items() for step_id in found},
         reached={place: len(found) for place, found in (taken | left).items()},
         slabs=slabs,
+        floors=floors,
         remarks=tuple(
             Remark(None, "scope", _passed_over(place, also[place], others), "doubt")
             for place, found in reached.items()

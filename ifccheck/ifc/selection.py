@@ -4,14 +4,42 @@ from __future__ import annotations
 
 import re
 from collections.abc import Callable, Iterable, Iterator, Sequence
-from typing import Any
+from typing import Any, Protocol
 
-from ifccheck.beam import Beam
 from ifccheck.errors import BriefError
 from ifccheck.ifc.opening import OpenedModel
 from ifccheck.units import clipped
 
-Field = Callable[[Beam], str]
+
+class Marked(Protocol):
+    """What marks and queries may reach."""
+
+    @property
+    def step_id(self) -> int:
+        """Its instance in the file."""
+
+    @property
+    def key(self) -> str:
+        """What results are told by."""
+
+    @property
+    def guid(self) -> str:
+        """GlobalId."""
+
+    @property
+    def ifc_class(self) -> str:
+        """Its class."""
+
+    @property
+    def name(self) -> str:
+        """Name."""
+
+    @property
+    def tag(self) -> str:
+        """Tag."""
+
+
+Field = Callable[[Marked], str]
 
 ONE_CLASS = re.compile(r"Ifc[A-Za-z0-9_]+")
 """A query that is no more than the name of a class."""
@@ -21,7 +49,7 @@ BLANKS = " \t\f\r\n"
 
 def select(
     opened: OpenedModel,
-    beams: Sequence[Beam],
+    beams: Sequence[Marked],
     patterns: Sequence[str] | None,
     where: str | None,
 ) -> tuple[str, ...]:
@@ -39,7 +67,7 @@ def select(
     return tuple(beam.key for beam in beams if beam.key in chosen)
 
 
-def _matched(beams: Sequence[Beam], pattern: str) -> list[str]:
+def _matched(beams: Sequence[Marked], pattern: str) -> list[str]:
     """Keys of the beams that a pattern reaches, by the first field that it matches any in.
 
     A pattern with ``*`` is no GlobalId: those are random, and "2*" would reach some by chance.
@@ -56,7 +84,7 @@ def _matched(beams: Sequence[Beam], pattern: str) -> list[str]:
     return [beam.key for beam in tagged or named]
 
 
-def _require_one_kind(pattern: str, tagged: Sequence[Beam], named: Sequence[Beam]) -> None:
+def _require_one_kind(pattern: str, tagged: Sequence[Marked], named: Sequence[Marked]) -> None:
     """Refuse a pattern that fits the Name of a beam that its Tags would leave out."""
     keys = {beam.key for beam in tagged}
     others = [beam for beam in named if beam.key not in keys]
@@ -82,7 +110,7 @@ def _matcher(pattern: str) -> Callable[[str], bool]:
     return lambda text: text != "" and expression.fullmatch(text) is not None
 
 
-def _answer(opened: OpenedModel, beams: Sequence[Beam], query: str) -> set[str]:
+def _answer(opened: OpenedModel, beams: Sequence[Marked], query: str) -> set[str]:
     """Keys of the beams that an element query finds among the candidates."""
     place = f'where = "{query}"'
     if not query.strip():
@@ -94,7 +122,7 @@ def _answer(opened: OpenedModel, beams: Sequence[Beam], query: str) -> set[str]:
     return _selected(opened, beams, query, place)
 
 
-def _of_class(opened: OpenedModel, beams: Sequence[Beam], name: str) -> set[str]:
+def _of_class(opened: OpenedModel, beams: Sequence[Marked], name: str) -> set[str]:
     """Keys of the beams of a class or of one under it, as ifcopenshell answers that query.
 
     Its selector, which builds several grammars when it is loaded, is left alone.
@@ -104,7 +132,7 @@ def _of_class(opened: OpenedModel, beams: Sequence[Beam], name: str) -> set[str]
     return {beam.key for beam in beams if beam.ifc_class in within}
 
 
-def _selected(opened: OpenedModel, beams: Sequence[Beam], query: str, place: str) -> set[str]:
+def _selected(opened: OpenedModel, beams: Sequence[Marked], query: str, place: str) -> set[str]:
     if not beams:
         _require_understood(opened, query, place)
         return set()  # without candidates ifcopenshell would search the whole model

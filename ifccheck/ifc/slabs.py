@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, NamedTuple
 
 import numpy as np
 
@@ -44,6 +44,19 @@ LEAST_PART = 1e4
 """Parts of a slab smaller than this are no flange [mm2]."""
 
 
+class MadeOf(NamedTuple):
+    """What a slab is made of."""
+
+    strength: float | None
+    """Of its concrete [MPa]"""
+    doubt: str
+    """Why it may not be the concrete of a flange"""
+    unlike: str
+    """Why it may not be concrete at all"""
+    density: float | None
+    """The greatest that is stated [kg/m3]"""
+
+
 class SlabReader:
     """Reads the slabs of one model."""
 
@@ -61,20 +74,24 @@ class SlabReader:
 
     def _slabs(self, entity: Entity) -> Iterator[Slab]:
         try:
-            found = [self._plate(placed) for placed in body_items(self._context, entity)]
-            plates = [plate for plate in found if plate is not None]
+            plates = [plate for plate in self.plates(entity) if plate is not None]
             if not plates:
                 return
-            strength, doubt = self._made_of(entity)
-            doubt = doubt or ("its body is cut" if any(cut for _, cut in plates) else "")
+            made = self.made_of(entity)
+            doubt = made.doubt or ("its body is cut" if any(cut for _, cut in plates) else "")
             holes, unread = self._holes(entity)
         except (UnreadableError, *ILL_TYPED):
             return
         name = f"{text_at(entity, NAME) or label(entity)} ({entity.is_a()})"
         for prism, _ in plates:
-            bottom, top = _levels(prism)
+            bottom, top = levels(prism)
             for rings in _rings(prism, holes):
-                yield Slab(entity.id(), name, rings, bottom, top, strength, doubt or unread)
+                yield Slab(entity.id(), name, rings, bottom, top, made.strength, doubt or unread)
+
+    def plates(self, entity: Entity) -> list[tuple[Prism, bool] | None]:
+        """The items of a slab's body: upright extrusions, and whether each is cut; None for any
+        other."""
+        return [self._plate(placed) for placed in body_items(self._context, entity)]
 
     def _plate(self, placed: Placed) -> tuple[Prism, bool] | None:
         """An upright extrusion, and whether it is cut; None for any other body."""
@@ -87,8 +104,8 @@ class SlabReader:
         upright = min(abs(prism.axes[2][2]), abs(unit(prism.along)[2])) >= LEVEL
         return (prism, cut) if upright else None
 
-    def _made_of(self, entity: Entity) -> tuple[float | None, str]:
-        """Strength of its concrete, and why it may not be the concrete of a flange."""
+    def made_of(self, entity: Entity) -> MadeOf:
+        """What a slab is made of."""
         step_id = entity.id()
         definition = self._materials.of(step_id)
         sets = self._context.properties.of(step_id)
@@ -106,7 +123,8 @@ class SlabReader:
             "it is prestressed" if prestressed else "",
             "its strength cannot be read" if concrete.strength_reason else "",
         )
-        return given, next(filter(None, doubts), "")
+        density = concrete.greatest_density.value if concrete.greatest_density else None
+        return MadeOf(given, next(filter(None, doubts), ""), doubts[0], density)
 
     def _names(self, entity: Entity) -> tuple[str, ...]:
         own = text_at(entity, NAME), text_at(entity, OBJECT_TYPE)
@@ -115,23 +133,28 @@ class SlabReader:
             return own
         return (*own, text(self._context.file.by_id(type_id), "Name"))
 
-    def _holes(self, entity: Entity) -> tuple[list[Cloud], str]:
-        """Places in plan that enclose each opening, and why one could not be read."""
+    def openings(self, entity: Entity) -> list[Entity]:
+        """The openings in a slab and in what it is a part of."""
         relations, by_id = self._context.relations, self._context.file.by_id
         owners = (entity.id(), *relations.ancestors(entity.id()))
-        openings = [by_id(one) for owner in owners for one in relations.openings.get(owner, ())]
+        return [by_id(one) for owner in owners for one in relations.openings.get(owner, ())]
+
+    def _holes(self, entity: Entity) -> tuple[list[Cloud], str]:
+        """Places in plan that enclose each opening, and why one could not be read."""
+        openings = self.openings(entity)
         holes: list[Cloud] = []
         for opening in openings:
             try:
                 items = body_items(self._context, opening)
-                holes += [self._points(placed)[:, :2] for placed in items]
+                holes += [self.points(placed)[:, :2] for placed in items]
             except (UnreadableError, *ILL_TYPED):
                 items = []
             if not items:
                 return holes, f"{label(opening)} in it cannot be read"
         return holes, ""
 
-    def _points(self, placed: Placed) -> Cloud:
+    def points(self, placed: Placed) -> Cloud:
+        """Places in the building that enclose a body."""
         item, matrix, _ = placed
         if item.is_a() == "IfcExtrudedAreaSolid":
             return extrusion(self._context, self._profiles, placed).corners()
@@ -140,10 +163,19 @@ class SlabReader:
         return np.asarray(local @ matrix[:3, :3].T + matrix[:3, 3])
 
 
-def _levels(prism: Prism) -> tuple[float, float]:
+def levels(prism: Prism) -> tuple[float, float]:
+    """Underside and top of a level plate [mm]."""
     one = float(prism.matrix[2, 3])
     other = one + prism.along[2]
     return round(min(one, other), 6), round(max(one, other), 6)
+
+
+def drawn_rings(prism: Prism) -> tuple[tuple[tuple[float, float], ...], ...]:
+    """The rings in plan of an upright extrusion, the outer one first [mm]."""
+    return tuple(
+        tuple((float(x), float(y)) for x, y, _ in prism.placed(ring))
+        for ring in prism.profile.rings
+    )
 
 
 def _rings(
@@ -152,9 +184,7 @@ def _rings(
     """The rings in plan of each part that the openings leave."""
     from shapely import MultiPoint, Polygon
 
-    outer, *voids = (
-        [(float(x), float(y)) for x, y, _ in prism.placed(r)] for r in prism.profile.rings
-    )
+    outer, *voids = drawn_rings(prism)
     figure: BaseGeometry = Polygon(outer, voids)
     for hole in holes:
         figure = figure.difference(MultiPoint(hole).convex_hull)

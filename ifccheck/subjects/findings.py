@@ -13,6 +13,7 @@ from ifccheck.frame.flanges import Slabs
 from ifccheck.frame.openings import Net
 from ifccheck.rating.shape import Stance
 from ifccheck.standards import Standard
+from ifccheck.subjects.floors import NO_FLOOR_LOADS, FloorLoads
 from ifccheck.subjects.framing import Framing
 
 NO_MATERIAL = MaterialStatement()
@@ -83,5 +84,7 @@ class Sources:
     """Load cases of the model that load each beam and that the brief does not take"""
     uncarried: Sequence[str]
     """Actions of cases that the brief takes which may act on any beam"""
+    floors: FloorLoads = NO_FLOOR_LOADS
+    """What slabs bring to beams"""
     framing: Framing | None = None
     """None where the brief states every support"""

@@ -47,6 +47,7 @@ from ifccheck.standards import Standard
 from ifccheck.subjects.concrete import Concrete, concrete_of
 from ifccheck.subjects.findings import Findings, Sources
 from ifccheck.subjects.flange_widths import with_widths
+from ifccheck.subjects.floors import NO_FLOOR_LOADS, FloorLoads, floor_loads
 from ifccheck.subjects.framed import framed
 from ifccheck.subjects.framing import (
     Framing,
@@ -81,6 +82,8 @@ class Gathered:
     """On every beam, rated or not"""
     framed: Framed | None = None
     """How beams were stood on what the model shows; None where the brief states it"""
+    floors: FloorLoads = NO_FLOOR_LOADS
+    """What slabs bring to beams"""
 
 
 def gather(model: Model, brief: Brief, matches: Matches, standard: Standard) -> Gathered:
@@ -116,7 +119,10 @@ def gather(model: Model, brief: Brief, matches: Matches, standard: Standard) -> 
         framing = stand_in_building(model, brief, matches, sources.ignored, stated)
     standing = framing.standing if framing else _standing_alone(beams, sources)
     spans = {key: each.reach for key, each in standing.items()}
+    floors = floor_loads(model, brief, matches, standing, brief.basis.concrete_unit_weight)
+    sources = replace(sources, floors=floors)
     loads = (
+        *floors.loads,
         *loads_on_beams(brief, matches, beams, spans, contacts),
         *taken_loads(brief, model.loads, beams, spans),
     )
@@ -134,6 +140,7 @@ def gather(model: Model, brief: Brief, matches: Matches, standard: Standard) -> 
         unrated=tuple(each for each in found if isinstance(each, Unrated)),
         loads=loads,
         framed=framed(framing) if framing else None,
+        floors=floors,
     )
 
 
@@ -307,6 +314,7 @@ def _asked(beam: Beam, sources: Sources, statement: BeamStatement, concrete: Con
         unit_weight=concrete.unit_weight.value,
         permanent=sources.permanent_cases,
         loads_complete=statement.loads_complete,
+        weighed=sources.floors.weighed,
     )
 
 
@@ -380,6 +388,7 @@ def _judge_model_loads(
         text = f"{which} of the model acts on it, and no case of the brief takes it"
         findings.remarks.append(Remark(beam.key, "loads", text, "doubt"))
     if not statement.loads_complete:
+        findings.reasons += sources.floors.reasons.get(beam.key, ())
         for text in sources.uncarried:
             findings.refuse(
                 f"{text}; give what of it acts on this beam under [[loads]] and write"
