@@ -12,9 +12,13 @@ from ifccheck.frame.contacts import kind_of
 from ifccheck.frame.flanges import HORIZONTAL, TOUCHING, footprint
 from ifccheck.frame.panels import Carrier
 from ifccheck.frame.webs import LEVEL, UPRIGHT, levels_of, ring_of
+from ifccheck.units import show
 
 if TYPE_CHECKING:
     from shapely import Polygon, STRtree
+GAP = 100.0
+"""A slab up to so much above a beam may lie on it by something that is not seen [mm]"""
+NOT_LEVEL = "the beam is not level, and slabs are laid on level beams alone"
 
 
 class Bearer(NamedTuple):
@@ -31,6 +35,7 @@ class Bearer(NamedTuple):
     high: float
     wall: int = 0
     """STEP id of a wall, else 0"""
+    level: bool = True
 
     def carries(self, bottom: float, top: float) -> bool:
         """Whether it meets a slab between two levels from below, or within its depth."""
@@ -45,6 +50,8 @@ class Under(NamedTuple):
     bearers: tuple[Bearer, ...]
     passed_over: tuple[str, ...]
     """Walls that may be partitions and are not counted on"""
+    doubtful: tuple[tuple[str, str], ...]
+    """Keys of beams that may carry it and are not counted on, each with why"""
 
 
 class FloorCarriers:
@@ -58,7 +65,7 @@ class FloorCarriers:
         model = self._model
         of_steps = {beam.step_id for beam in model.beams}
         others = {one.step_id for one in model.out_of_scope} - of_steps
-        beams = [_of_beam(beam) for beam in model.beams if _is_level(beam)]
+        beams = [_of_beam(beam) for beam in model.beams if _lies(beam)]
         steel = [_of_member(one) for one in model.members if one.step_id in others]
         walls = [_of_member(one) for one in model.members if kind_of(one.ifc_class) == "IfcWall"]
         return [*beams, *filter(None, steel), *filter(None, walls)]
@@ -77,11 +84,13 @@ class FloorCarriers:
         for plate in slab.plates:
             plan = _polygon(plate.rings[0]).buffer(TOUCHING)
             rows |= set(self._tree.query(plan, predicate="intersects").tolist())
-        near = [self._all[row] for row in sorted(rows) if self._all[row].carries(bottom, top)]
+        meeting = [self._all[row] for row in sorted(rows)]
+        near = [one for one in meeting if one.level and one.carries(bottom, top)]
         bearing = self._model.floors.load_bearing
         sure = [one for one in near if not one.wall or _bears(one, walls, bearing)]
         over = [one.told for one in near if one not in sure and walls is None]
-        return Under(tuple(sure), tuple(over))
+        doubts = [(one.beam, why) for one in meeting if (why := _doubt(one, bottom, top))]
+        return Under(tuple(sure), tuple(over), tuple(doubts))
 
     def beams_near(self, step_id: int) -> list[str]:
         """Keys of the beams that the box of a member meets, whatever it is."""
@@ -104,6 +113,16 @@ class FloorCarriers:
         return found
 
 
+def _doubt(one: Bearer, bottom: float, top: float) -> str:
+    """Why a beam may carry a slab that is not laid on it; empty where none of it is in doubt."""
+    if not one.beam:
+        return ""
+    if not one.level:
+        return NOT_LEVEL if one.carries(bottom, top) else ""
+    gap = bottom - one.high
+    return f"it lies {show(gap, 'dimension')} above the beam" if TOUCHING < gap <= GAP else ""
+
+
 def _bears(wall: Bearer, walls: bool | None, bearing: Set[int]) -> bool:
     return wall.wall in bearing if walls is None else walls
 
@@ -114,8 +133,8 @@ def _polygon(ring: Ring) -> Polygon:
     return Polygon(ring)
 
 
-def _is_level(beam: Beam) -> bool:
-    return bool(beam.runs) and beam.axis is not None and abs(beam.axis.x[2]) <= HORIZONTAL
+def _lies(beam: Beam) -> bool:
+    return bool(beam.runs) and beam.axis is not None and abs(beam.axis.x[2]) <= LEVEL
 
 
 def _of_beam(beam: Beam) -> Bearer:
@@ -126,7 +145,10 @@ def _of_beam(beam: Beam) -> Bearer:
     end = x + beam.axis.length * a, y + beam.axis.length * b
     carrier = Carrier((x, y), end, max(-right, left))
     told = f"{beam.mark} ({beam.ifc_class})"
-    return Bearer(carrier, beam.key, told, tuple(corners), low, high)
+    level = abs(beam.axis.x[2]) <= HORIZONTAL
+    rise = beam.axis.length * beam.axis.x[2]
+    low, high = low + min(rise, 0.0), high + max(rise, 0.0)
+    return Bearer(carrier, beam.key, told, tuple(corners), low, high, level=level)
 
 
 def _of_member(member: Member) -> Bearer | None:

@@ -40,3 +40,11 @@ def covered(plans: Sequence[Sequence[Ring]]) -> list[tuple[Ring, ...]]:
 def shifted(ring: Ring, origin: Point) -> list[Point]:
     """Return a ring as it is seen from an origin."""
     return [(x - origin[0], y - origin[1]) for x, y in ring]
+
+
+def distance_from(ring: Ring, place: Point) -> float:
+    """Return how far a place is from what a ring encloses [mm]."""
+    from shapely import Point as Place
+    from shapely import Polygon
+
+    return float(Polygon(ring).distance(Place(place)))

@@ -63,6 +63,11 @@ class Carrier(NamedTuple):
         (x0, y0), (x, y) = self.start, self.way
         return x * (point[0] - x0) + y * (point[1] - y0)
 
+    def at(self, along: float) -> Point:
+        """A place on its line, so far past its start."""
+        (x0, y0), (x, y) = self.start, self.way
+        return x0 + along * x, y0 + along * y
+
 
 class Edge(NamedTuple):
     """A straight part of the edge of a panel, the panel to its left."""

@@ -7,14 +7,14 @@ from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass, field
 from typing import NamedTuple
 
-from ifccheck.beam import Beam, FloorSlab, Load, Model, Reason, Remark, RemarkKind, Ring
+from ifccheck.beam import Beam, Face, FloorSlab, Load, Model, Reason, Remark, RemarkKind, Ring
 from ifccheck.brief.merging import Matches
 from ifccheck.brief.model import Brief, FloorEntry
 from ifccheck.frame.floor_carriers import Bearer, FloorCarriers, Under
-from ifccheck.frame.floor_figures import covered, floor_figure
+from ifccheck.frame.floor_figures import covered, distance_from, floor_figure
 from ifccheck.frame.panels import Carrier
 from ifccheck.frame.spans import Standing
-from ifccheck.frame.tributary import Span, shares
+from ifccheck.frame.tributary import Share, Span, shares
 from ifccheck.frame.widths import Width, widths_along, within
 from ifccheck.units import show
 
@@ -27,6 +27,9 @@ PASSED_OVER = (
     "walls that the model does not call load bearing do not carry slab (they would with walls ="
     " true)"
 )
+FACES = "slab stops at the faces of beams, so that nothing is laid on their own width"
+BESIDE = 1.0
+"""An axis that is farther from a slab lies beside it [mm]"""
 GIVE = "give what it brings to this beam under [[loads]] and write loads_complete = true"
 
 
@@ -53,6 +56,8 @@ class _Part(NamedTuple):
     bearer: Bearer
     area: float
     widths: tuple[Width, ...]
+    beside: bool
+    """The slab stops at the face of the beam"""
 
 
 class _Figure(NamedTuple):
@@ -74,6 +79,8 @@ class _Told:
     nowhere: dict[str, tuple[float, float]] = field(default_factory=dict)
     """Area and load of slabs that nothing carries"""
     partitions: dict[str, None] = field(default_factory=dict)
+    beside: dict[str, None] = field(default_factory=dict)
+    """Beams at whose faces slab stops"""
     notes: dict[str, None] = field(default_factory=dict)
 
 
@@ -137,13 +144,15 @@ class _Laying:
         told.notes |= dict.fromkeys(f"{slab.told}: {note}" for note in slab.notes)
         for number, figure in enumerate(self._figures(entry, slab)):
             self._lay_figure(entry, slab, number, figure, under, told)
+        for key, why in under.doubtful:
+            self._doubt([key], slab, why)
         if entry.self_weight and slab.unlike:
             keys = [one.beam for one in under.bearers if one.beam]
             self._doubt(keys, slab, f"its weight is not known: {slab.unlike}")
 
     def _doubt(self, keys: Sequence[str], slab: FloorSlab, why: str) -> None:
         text = f"floor not included: {slab.told}: {why}; {GIVE}"
-        for key in keys:
+        for key in dict.fromkeys(keys):
             self.reasons[key].append(Reason(text, blocking=False))
 
     def _figures(self, entry: FloorEntry, slab: FloorSlab) -> Iterator[_Figure]:
@@ -175,10 +184,15 @@ class _Laying:
                 told.elsewhere[part.bearer.told] += force
                 continue
             told.on_beams += force
+            if part.beside:
+                told.beside[part.bearer.told] = None
             self.carried.add(entry.place)
             if figure.text.startswith("self weight"):
                 self.weighed.add(slab.step_id)
-            self.loads += self._on_beam(entry, slab, figure, part)
+            face = _face(part.bearer, slab)
+            self.loads += [
+                one._replace(face=face) for one in self._on_beam(entry, slab, figure, part)
+            ]
 
     def _shared(
         self, entry: FloorEntry, slab: FloorSlab, rings: tuple[Ring, ...], under: Under
@@ -189,12 +203,7 @@ class _Laying:
             carriers = [one.carrier for one in under.bearers]
             found = shares(rings, slab.openings, carriers, Span(entry.span, entry.direction))
             self._parts[key] = tuple(
-                _Part(
-                    under.bearers[one.carrier],
-                    one.figure.area,
-                    widths_along(one.figure, _seen_from(carriers[one.carrier], origin)),
-                )
-                for one in found
+                _part(one, under.bearers[one.carrier], rings[0], origin) for one in found
             )
         return self._parts[key]
 
@@ -250,6 +259,20 @@ class _Beyond(NamedTuple):
             )  # fmt: skip
 
 
+def _face(bearer: Bearer, slab: FloorSlab) -> Face:
+    """Slab in the lower half of a beam's depth hangs from it."""
+    top = max(plate.top for plate in slab.plates)
+    return "top" if top >= (bearer.low + bearer.high) / 2.0 else "bottom"
+
+
+def _part(share: Share, bearer: Bearer, outer: Ring, origin: tuple[float, float]) -> _Part:
+    widths = widths_along(share.figure, _seen_from(bearer.carrier, origin))
+    area = share.figure.area
+    middle = sum(each.area * each.middle for each in widths) / area
+    beside = distance_from(outer, bearer.carrier.at(middle)) > BESIDE
+    return _Part(bearer, area, widths, beside)
+
+
 def _text(figure: _Figure, width: Width) -> str:
     one, other = show(width.first, "length"), show(width.last, "length")
     over = one if one == other else f"{one} to {other}"
@@ -285,6 +308,8 @@ def _words(told: _Told) -> Iterator[tuple[str, RemarkKind]]:
         yield f"{total} reaches no beam: {_listed(named)}", "doubt"
     if told.partitions:
         yield f"{PASSED_OVER}: {_listed(list(told.partitions))}", "doubt"
+    if told.beside:
+        yield f"{FACES}: {_listed(list(told.beside))}", "doubt"
     yield from ((text, "doubt") for text in told.notes)
 
 

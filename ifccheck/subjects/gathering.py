@@ -30,7 +30,6 @@ from ifccheck.brief.supports import (
     overruled_supports,
     resolve_supports,
     stated_ends,
-    told_ignored,
 )
 from ifccheck.frame.bar_ends import Surroundings
 from ifccheck.frame.carrying import contacts_of
@@ -58,6 +57,7 @@ from ifccheck.subjects.framing import (
     with_reactions,
 )
 from ifccheck.subjects.slab_steel import SlabSteel, slab_steel_of
+from ifccheck.subjects.stated import stated_texts
 from ifccheck.subjects.steel import Steel, steel_of
 from ifccheck.units import clipped
 
@@ -135,6 +135,12 @@ def gather(model: Model, brief: Brief, matches: Matches, standard: Standard) -> 
         _one(beam, sources, standing.get(beam.key), of_beam.get(beam.key, ()))
         for beam in model.beams
     ]
+    return _gathered(found, loads, floors)
+
+
+def _gathered(
+    found: Sequence[Subject | Unrated], loads: tuple[Load, ...], floors: FloorLoads
+) -> Gathered:
     return Gathered(
         subjects=tuple(each for each in found if isinstance(each, Subject)),
         unrated=tuple(each for each in found if isinstance(each, Unrated)),
@@ -231,7 +237,7 @@ def _one(
 ) -> Subject | Unrated:
     findings = Findings(beam.key, list(beam.reasons), list(beam.remarks))
     statement = sources.statements.get(beam.key, NO_STATEMENT)
-    stated = _stated(beam.key, sources, statement, loads)
+    stated = stated_texts(beam.key, sources, statement, loads)
     contacts = sources.contacts.get(beam.key, ())
     findings.remarks += [*sources.support_remarks.get(beam.key, ()), *statement.remarks]
     findings.remarks += [
@@ -341,29 +347,6 @@ def _net(
 
 def _distinct(reasons: Sequence[Reason]) -> tuple[Reason, ...]:
     return tuple({reason.text: reason for reason in reasons}.values())
-
-
-def _stated(
-    key: str, sources: Sources, statement: BeamStatement, loads: Sequence[Load]
-) -> tuple[str, ...]:
-    """What the engineer stated that overrules a doubt: it must be seen."""
-    found = []
-    if statement.unloaded:
-        found.append("unloaded = true: self weight alone is meant")
-    if statement.loads_complete:
-        found.append("loads_complete = true: what rests on the beam is in the loads given")
-    if statement.slab_bars_from:
-        found.append('slab_bars = "anchored": bars of slabs in its flange are anchored')
-    if key in sources.ignored:
-        found += told_ignored(sources.ignored[key])
-    if sources.upward:
-        found += _stated_upward(sources, loads)
-    return tuple(found)
-
-
-def _stated_upward(sources: Sources, loads: Sequence[Load]) -> tuple[str, ...]:
-    meant = dict.fromkeys(load.origin for load in loads if sources.upward.get(load.origin))
-    return tuple(f"upward = true: {place} acts upward" for place in meant)
 
 
 def _judge_upward(sources: Sources, loads: Sequence[Load], findings: Findings) -> None:
