@@ -135,11 +135,14 @@ def gather(model: Model, brief: Brief, matches: Matches, standard: Standard) -> 
         _one(beam, sources, standing.get(beam.key), of_beam.get(beam.key, ()))
         for beam in model.beams
     ]
-    return _gathered(found, loads, floors)
+    return _gathered(found, loads, framing, floors)
 
 
 def _gathered(
-    found: Sequence[Subject | Unrated], loads: tuple[Load, ...], floors: FloorLoads
+    found: Sequence[Subject | Unrated],
+    loads: tuple[Load, ...],
+    framing: Framing | None,
+    floors: FloorLoads,
 ) -> Gathered:
     return Gathered(
         subjects=tuple(each for each in found if isinstance(each, Subject)),
