@@ -143,6 +143,14 @@ def _case_text(
 _BY_BEAM = {
     "the span is taken from ": "the span is taken from centre to centre of what the beam stands"
     " on, or from its ends: each sheet says which",
+    "supported at x = ": "supported by what the model shows under the beam, at its ends or crossing"
+    " it: each sheet names what, and the plans mark it",
+    "meets ": "meets another beam in one line over a support, and takes no moment from it: each"
+    " sheet names it and says why",
+    "goes on into ": "goes on into another beam over a support with all moment: each sheet names"
+    " it, and the plans show the line",
+    "a cantilever of ": "a cantilever: each sheet tells its length, and what it is built into",
+    "it hangs over by ": "hangs over past its last support: each sheet tells how far",
 }
 """Assumptions that differ only by the members that they name, by how they begin."""
 _NAMING = tuple(_BY_BEAM)

@@ -90,6 +90,21 @@ def test_the_sheet_tells_on_which_spans_a_case_governs(run: pipeline.Run) -> Non
     assert (floor.of_spans, floor.spans) == (2, (0,))
 
 
+def test_what_differs_by_the_members_named_is_one_assumption_of_the_run(run: pipeline.Run) -> None:
+    """Sheets and data name the supports of every beam; the list of the run stays readable."""
+    report = run.reports[0]
+    texts = [each.text for each in report.assumptions]
+    assert not any("C-1B" in text or "T-112" in text for text in texts)
+    (stood,) = [each for each in report.assumptions if each.text.startswith("supported by what")]
+    named = {
+        key
+        for key, rating in report.ratings.items()
+        if any(remark.text.startswith("supported at x = ") for remark in rating.remarks)
+    }
+    assert set(stood.beams) == named
+    assert len(named) > 60
+
+
 def test_weight_that_another_beam_brings_near_a_support_is_a_concentrated_load() -> None:
     """11.3.2.1, as for any other load at a point: 300 kN of self weight at 0.3 m from the face."""
     light = line("floor", 1.0)
