@@ -105,7 +105,14 @@ def _sheets(
 
 def _case(case: Case, gathered: Gathered, ratings: Mapping[str, Rating]) -> CaseSummary:
     """The factor of a rated case over the whole model."""
-    reached = list(dict.fromkeys(load.beam for load in gathered.loads if load.case == case.name))
+    reached = list(
+        dict.fromkeys(
+            [
+                *(load.beam for load in gathered.loads if load.case == case.name),
+                *(key for key, cases in gathered.through_lines.items() if case.name in cases),
+            ]
+        )
+    )
     factors = {
         key: safe.factor
         for key in reached

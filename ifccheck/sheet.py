@@ -294,8 +294,8 @@ def bare_sheet(beam: Beam, rating: Rating) -> Sheet:
 
 
 def _acting(arisen: Arising, subject: Subject) -> Iterator[tuple[int, Case]]:
-    """The cases that load a beam, with their rows."""
-    loaded = {SELF, *(load.case for load in subject.loads)}
+    """The cases that act on a beam, with their rows."""
+    loaded = {SELF, *subject.acting}
     return ((k, case) for k, case in enumerate(arisen.cases) if case.name in loaded)
 
 

@@ -120,6 +120,20 @@ class MadeSlab:
 
 
 @dataclass(frozen=True)
+class MadeColumn:
+    """A square column in the building's axes, by its middle in plan, its foot and its head."""
+
+    x: float
+    y: float = 0.0
+    size: float = 300.0
+    z: tuple[float, float] = (-3000.0, 0.0)
+
+    @property
+    def name(self) -> str:
+        return f"column at {self.x}, {self.y}, {self.z[0]}"
+
+
+@dataclass(frozen=True)
 class Setting:
     """How a model is written."""
 
@@ -337,6 +351,14 @@ class Model:
         named = dict(zip(("Axis1", "Axis2", "Axis3"), axes, strict=True))
         return [bodies.mapped(item, LocalOrigin=origin, **named) for item in draw(bodies)]
 
+    def add_column(self, column: MadeColumn) -> None:
+        x = -column.x if self.setting.mirrored else column.x
+        placed, inner = self._frames(Frame((x, column.y, column.z[0])))
+        half = column.size / 2.0
+        ring = ((-half, -half), (half, -half), (half, half), (-half, half))
+        solid = self._extrusion(ring, inner, True, column.z[1] - column.z[0])
+        self._element("IfcColumn", column.name, placed, self._shape(solid))
+
     def add_slab(self, slab: MadeSlab) -> None:
         frame, sign = Frame((0.0, 0.0, slab.bottom)), -1.0 if self.setting.mirrored else 1.0
         placed, inner = self._frames(frame)
@@ -482,12 +504,17 @@ class Model:
 
 
 def model(
-    *beams: MadeBeam, setting: Setting | None = None, slabs: Sequence[MadeSlab] = ()
+    *beams: MadeBeam,
+    setting: Setting | None = None,
+    slabs: Sequence[MadeSlab] = (),
+    columns: Sequence[MadeColumn] = (),
 ) -> bytes:
     """The bytes of an IFC model of the beams."""
     made = Model(setting or Setting())
     for beam in beams:
         made.add_beam(beam)
+    for column in columns:
+        made.add_column(column)
     for slab in slabs:
         made.add_slab(slab)
     return made.finish()

@@ -347,7 +347,7 @@ def test_beams_that_cross_over_a_column_are_both_carried_by_it() -> None:
         column("3", 4000, -3800), column("4", 4000, 3800),
     ])  # fmt: skip
     stood = stand(model)
-    assert not stood.lines.crossing
+    assert not stood.lines.doubts
     rows_near(stood.rows("X1")[1:2], [("between", 4000, 3800, 4200, "M", BELOW, True)])
     assert [len(line) for line in stood.spans()] == [2, 2]
 
@@ -381,7 +381,7 @@ def test_a_wall_of_many_beams_joins_only_those_in_line() -> None:
 
 def test_beams_that_cross_at_one_level_are_both_told() -> None:
     stood = building(Setting())
-    told = {stood.names[key]: reasons for key, reasons in stood.lines.crossing.items()}
+    told = {stood.names[key]: reasons for key, reasons in stood.lines.doubts.items()}
     assert set(told) == {"X1", "X2"}
     assert "X2 (IfcBeam) crosses it at one level at x = 4.00 m" in told["X1"][0].text
     assert not told["X1"][0].blocking

@@ -30,7 +30,8 @@ def continuous(moment: float, *, apart: bool) -> Continuity:
     moments[parts.rows(1)[0], 0, 0] = -moment
     if apart:
         moments[parts.rows(1)[2], 0, 0] = moment / 2.0
-    return Continuity((1,), 2, parts, moments)
+    beside = np.zeros((parts.case.size, 2))
+    return Continuity((1,), 2, parts, moments, beside, frozenset({"floor"}))
 
 
 @pytest.mark.parametrize("apart", [False, True])

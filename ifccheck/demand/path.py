@@ -23,7 +23,7 @@ from ifccheck.beam import Beam, Case, Load, Reason
 from ifccheck.demand.rows import Rows, curvature_on, line_table, loads_on, nodes_of, rows_of
 from ifccheck.frame.beam_lines import BeamLine, Node
 from ifccheck.framed import Balance
-from ifccheck.mechanics.arrays import Floats
+from ifccheck.mechanics.arrays import Floats, Ints
 from ifccheck.rating.subject import Continuity
 from ifccheck.units import show
 
@@ -43,6 +43,8 @@ class LoadPath:
     """Of beams in lines of more than one span"""
     resting: dict[str, set[str]] = field(default_factory=lambda: defaultdict(set))
     """Beams whose reactions each beam receives"""
+    solved: list[BeamLine] = field(default_factory=list)
+    """Lines, each after all that rests on it"""
     in_a_ring: dict[str, Reason] = field(default_factory=dict)
     """Beams that wait for each other, and are not solved"""
     balance: list[Balance] = field(default_factory=list)
@@ -85,6 +87,7 @@ def load_path(
     path, solved = LoadPath(), set[int]()
     for some in _rounds(lines, line_of):
         solved |= set(some)
+        path.solved.extend([lines[number] for number in some])
         _solve([lines[number] for number in some], given, path)
     for number, line in enumerate(lines):
         if number not in solved:
@@ -136,27 +139,48 @@ def _solve(lines: Sequence[BeamLine], given: _Given, path: LoadPath) -> None:
     joined = line_table(rows, given.beams)
     if joined.line.size:
         solved = continuous(solved, joined, curvature)
-    _note_continuity(rows, solved, parts, path)
     forces = _at_nodes(rows, solved)
+    _note_continuity(rows, solved, parts, forces, given.cases, path)
     _pass_on(rows, forces, parts, given, path)
     path.balance.extend(_balance(rows, forces, received, solved.totals.force, parts, given))
 
 
-def _note_continuity(rows: Rows, solved: Solved, parts: Parts, path: LoadPath) -> None:
-    """Keep the moments at the ends of spans that go on."""
+def _note_continuity(
+    rows: Rows,
+    solved: Solved,
+    parts: Parts,
+    forces: Floats,
+    cases: Sequence[Case],
+    path: LoadPath,
+) -> None:
+    """Keep the moments at the ends of spans that go on, and what comes from beside at supports."""
     near, along = solved.start.moment, solved.start.reaction * solved.spans.length
     far = near + along - solved.totals.moment
     simple = (solved.spans.start_kind != FREE) & (solved.spans.end_kind != FREE)
     moments = np.stack([np.where(simple, near, 0.0), np.where(simple, far, 0.0)], axis=-1)
     goes_on = in_line(solved.spans)
+    bends = np.abs(moments).max(axis=-1) > _NOTHING * solved.moment_scale
     for beam in np.unique(rows.beam_of[goes_on]).tolist():
         spans = np.flatnonzero(rows.beam_of == beam)
+        acting = np.unique(parts.case[bends[:, spans[goes_on[spans]]].any(axis=1)]).tolist()
         path.continuity[rows.keys[beam]] = Continuity(
             places=tuple(rows.place[spans].tolist()),
             spans=len(rows.lines[rows.line[spans[0]]].spans),
             parts=parts,
             moments=moments[:, spans] * goes_on[spans][:, None],
+            beside=_beside(rows, solved, forces, spans),
+            cases=frozenset([cases[case].name for case in acting]),
         )
+
+
+def _beside(rows: Rows, solved: Solved, forces: Floats, spans: Ints) -> Floats:
+    """What other beams of its line bring to the supports at both ends of a beam (P, 2)."""
+    first, last = spans[0], spans[-1]
+    against = rows.against[first]
+    nodes = rows.left[first] + against, rows.left[last] + 1 - against
+    own_first = solved.start.reaction[:, first]
+    own_last = solved.totals.force[:, last] - solved.start.reaction[:, last]
+    return np.stack([forces[:, nodes[0]] - own_first, forces[:, nodes[1]] - own_last], axis=-1)
 
 
 def _at_nodes(rows: Rows, solved: Solved) -> Floats:
@@ -178,7 +202,8 @@ def _pass_on(rows: Rows, forces: Floats, parts: Parts, given: _Given, path: Load
         if carrier in given.line_of:
             of_node = rows.lines[line].nodes[place]
             beam = given.beams[of_node.seats[0].beam]
-            path.resting[carrier].add(beam.key)
+            same = [seat.beam for seat in of_node.seats if seat.carrier_beam == carrier]
+            path.resting[carrier].update(same)
             x = _place_on(beam, of_node.seats[0].x, given.beams[carrier])
             least = _NOTHING * float(whole[node])
             for case, force, apart in _forces(forces[:, node], parts, given.cases):

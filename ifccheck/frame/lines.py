@@ -3,7 +3,7 @@ model shows them and the brief says."""
 
 from __future__ import annotations
 
-from collections.abc import Iterator, Mapping, Sequence, Set
+from collections.abc import Iterable, Iterator, Mapping, Sequence, Set
 from graphlib import TopologicalSorter
 from itertools import pairwise
 from operator import attrgetter
@@ -39,8 +39,8 @@ class Lines(NamedTuple):
     """Of all that spans, out of scope too ("#" and step id), in order along it"""
     order: tuple[str, ...]
     """All that stands: what carries comes before what it carries"""
-    crossing: Mapping[str, tuple[Reason, ...]]
-    """Doubts on beams that cross others at one level"""
+    doubts: Mapping[str, tuple[Reason, ...]]
+    """On beams that cross others at one level, or that go on into beams that do not stand"""
     remarks: Mapping[str, tuple[Remark, ...]]
 
 
@@ -112,7 +112,7 @@ def find_lines(
         unknown=unknown,
         seats=seats,
         order=_carriers_first(seats, order),
-        crossing={key: tuple(map(told.crossing, own)) for key, own in crossed.level.items()},
+        doubts=_doubts(frame, crossed.level, spans),
         remarks={key: tuple(_remarks(frame, seats[key], own)) for key, own in spans.items()},
     )
 
@@ -179,6 +179,19 @@ def _why_not(frame: _Frame, key: str, seats: Sequence[Seat], unknown: Mapping[st
         if any(other in unknown for other in leans_on):
             return told.leans(frame.bodies[leans_on[0]].told)
     return ""
+
+
+def _doubts(
+    frame: _Frame, level: Mapping[str, Sequence[Contact]], standing: Iterable[str]
+) -> dict[str, tuple[Reason, ...]]:
+    """What may bear on beams beside what rests on them."""
+    found = {key: list(map(told.crossing, own)) for key, own in level.items()}
+    standing = set(standing)
+    for key in standing:
+        for other in [frame.joints[key, end][0] for end in ENDS if (key, end) in frame.joints]:
+            if other not in standing:
+                found.setdefault(key, []).append(told.goes_on_into(frame.bodies[other].told))
+    return {key: tuple(own) for key, own in found.items()}
 
 
 def _holds_alone(seat: Seat, said: Mapping[End, SupportKind]) -> bool:

@@ -48,6 +48,14 @@ def meets(seat: Seat, other: str, *, goes_on: bool, passes: bool) -> Remark:
     return _assumed(seat.beam, f"meets {other} {where}, and takes no moment from it: {why}")
 
 
+def goes_on_into(other: str) -> Reason:
+    """Say that a beam may carry, or bend with, one that does not stand."""
+    return Reason(
+        f"reactions not included: it goes on into {other}, of which nothing tells how it stands",
+        blocking=False,
+    )
+
+
 def lies_along(contact: Contact) -> str:
     """Say that something carries a beam from end to end."""
     return f"it lies on {contact.other} from end to end and does not span{_ANSWER}"

@@ -202,7 +202,10 @@ def _safe_loads(
     """What each rated case may grow to on every beam that it loads."""
     columns = []
     for case in (each.name for each in cases if each.rated):
-        loads = [[load for load in s.loads if load.case == case] for s in batch.subjects]
+        loads = [
+            [load for load in s.loads if load.case == case] if case in s.acting else None
+            for s in batch.subjects
+        ]
         factors, states = batch.factors[case], standard.limit_states
         columns.append(verdict.safe_loads(case, loads, factors, states, batch.places, complete))
     found = zip(*columns, strict=True) if columns else ((),) * len(batch.subjects)

@@ -91,6 +91,9 @@ class Frame:
     end_moments: Floats | None
     """That its line adds at the start and the end of each span, by part [N*mm] (P, S, 2); None
     where every span stands alone"""
+    beside: Floats | None
+    """What the beams next to it in its line bring to the supports at the start and the end of
+    each beam, by part [N] (P, B, 2); None where every span stands alone"""
     curvature: Curvature | None
     """Of beams whose stiffness varies along them, where their moments depend on it"""
     self_case: int
@@ -149,6 +152,7 @@ def frame_of(subjects: Sequence[Subject], cases: Sequence[Case]) -> Frame:
         curvature=curvature_of(bodies, spans, beam_of, loads, members, runs),
         parts=parts,
         end_moments=_end_moments(subjects, parts, beam_of),
+        beside=_beside(subjects, parts),
         self_case=int(parts.first[row_of_case[SELF]]),
         checked=checked_stretch(members, spans, beam_of, lengths),
         disturbed=disturbed_stretches(subjects),
@@ -181,15 +185,26 @@ def _end_moments(subjects: Sequence[Subject], parts: Parts, beam_of: Ints) -> Fl
     first = np.searchsorted(beam_of, np.arange(len(subjects))).tolist()
     for row, subject in zip(first, subjects, strict=True):
         if subject.continuity:
-            given = subject.continuity.in_parts(parts)
+            given = subject.continuity.in_parts(subject.continuity.moments, parts)
             moments[:, row : row + given.shape[1]] = given
     return moments
+
+
+def _beside(subjects: Sequence[Subject], parts: Parts) -> Floats | None:
+    """What lines bring to the supports at both ends of beams (P, B, 2); None without a line."""
+    if not any(subject.continuity for subject in subjects):
+        return None
+    forces = np.zeros((parts.case.size, len(subjects), 2))
+    for row, subject in enumerate(subjects):
+        if subject.continuity:
+            forces[:, row] = subject.continuity.in_parts(subject.continuity.beside, parts)
+    return forces
 
 
 def _natures(subjects: Sequence[Subject], cases: Sequence[Case]) -> tuple[frozenset[Nature], ...]:
     nature = {case.name: case.nature for case in cases}
     return tuple(
-        frozenset({nature[SELF], *(nature[load.case] for load in subject.loads)})
+        frozenset({nature[SELF], *(nature[case] for case in subject.acting)})
         for subject in subjects
     )
 

@@ -9,6 +9,7 @@ import numpy as np
 
 from ifccheck.analysis.parts import Parts
 from ifccheck.beam import (
+    SELF,
     Bars,
     Beam,
     Face,
@@ -35,17 +36,22 @@ class Continuity(NamedTuple):
     """Of the cases, as the line was solved by them"""
     moments: Floats
     """At the start and the end of each span of the beam, of every part [N*mm] (P, spans, 2)"""
+    beside: Floats
+    """What the beams next to it in the line bring to the supports at its start and its end, of
+    every part [N] (P, 2)"""
+    cases: frozenset[str]
+    """That bend it through its line, wherever on that they act"""
 
-    def in_parts(self, parts: Parts) -> Floats:
-        """The moments by other parts of the same cases, of lines at least as long and, where these
-        have loads apart, with such."""
-        found = np.zeros((parts.case.size, *self.moments.shape[1:]))
+    def in_parts(self, of_parts: Floats, parts: Parts) -> Floats:
+        """``moments`` or ``beside`` by other parts of the same cases, of lines at least as long
+        and, where these have loads apart, with such."""
+        found = np.zeros((parts.case.size, *of_parts.shape[1:]))
         for case in range(parts.first.size - 1):
             own, other = self.parts.rows(case), parts.rows(case)
             for apart in range(2 if own.size > self.parts.places else 1):
                 few = min(self.spans, own.size)
                 here = own[apart * self.parts.places :][:few]
-                found[other[apart * parts.places :][:few]] = self.moments[here]
+                found[other[apart * parts.places :][:few]] = of_parts[here]
         return found
 
 
@@ -104,6 +110,12 @@ class Subject:
     def weighed(self) -> tuple[Run, ...]:
         """The outlines that self weight is that of."""
         return self.body.weighed if self.body else self.beam.runs
+
+    @property
+    def acting(self) -> frozenset[str]:
+        """Cases that act on it, itself or through its line, besides self weight."""
+        through = self.continuity.cases if self.continuity else frozenset[str]()
+        return through.union([load.case for load in self.loads]) - {SELF}
 
     @property
     def ends(self) -> tuple[float, float]:

@@ -151,14 +151,16 @@ def incomplete_reasons(states: Sequence[LimitStateRating]) -> tuple[Reason, ...]
 
 def safe_loads(
     case: str,
-    loads: Sequence[Sequence[Load]],
+    loads: Sequence[Sequence[Load] | None],
     factors: Factors,
     states: Sequence[LimitState],
     places: Places,
     complete: Sequence[bool],
 ) -> list[SafeLoad | None]:
-    """What a rated case may grow to on each beam (B); None where none of its ``loads`` acts.
+    """What a rated case may grow to on each beam (B); None where it does not act.
 
+    ``loads`` are its own on each beam, empty where it acts through the line alone, and None where
+    it does not act.
     ``complete`` is False where something of the beam is not settled, whatever its verdict.
     """
     columns = (factors.factor, factors.state, factors.x)
@@ -172,16 +174,16 @@ def safe_loads(
     titles = [*(state.title for state in states), ""]  # the last where none limits it
     return [
         _safe_load(case, own, factor, titles[state], position, combination if state >= 0 else "")
-        if own and whole
+        if own is not None and whole
         else _unknown(case, own)
-        if own
+        if own is not None
         else None
         for own, whole, factor, state, position, combination in rows
     ]
 
 
 def _assigned(loads: Sequence[Load]) -> str:
-    return "; ".join([load.text for load in loads])
+    return "; ".join([load.text for load in loads]) or "on beams that it goes on into"
 
 
 def _unknown(case: str, loads: Sequence[Load]) -> SafeLoad:

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator, Mapping, Sequence
+from collections.abc import Iterator, Mapping, Sequence, Set
 from dataclasses import dataclass, field, replace
 from functools import cached_property
 
@@ -15,6 +15,7 @@ from ifccheck.demand.overrules import Overrules, overruled, several_spans
 from ifccheck.demand.path import LoadPath, load_path
 from ifccheck.demand.standing import standing_in_lines
 from ifccheck.errors import BriefError
+from ifccheck.frame.beam_lines import BeamLine
 from ifccheck.frame.boxes import section_extent
 from ifccheck.frame.contacts import contacts_of_others, find_contacts
 from ifccheck.frame.joints import RunsThrough, by_bars
@@ -41,6 +42,13 @@ class Framing:
     path: LoadPath = field(default_factory=LoadPath)
     passed: Mapping[str, Sequence[Reason]] = field(default_factory=dict)
     """Why what rests on a beam does not give all that acts on it"""
+    beside: Mapping[str, Sequence[Reason]] = field(default_factory=dict)
+    """Why beams that one goes on into, or that are fixed into it, may do more to it than is told"""
+
+    @property
+    def through_lines(self) -> dict[str, frozenset[str]]:
+        """Cases that act on beams through their lines, by key."""
+        return {key: each.cases for key, each in self.path.continuity.items()}
 
     @cached_property
     def standing_steps(self) -> frozenset[int]:
@@ -71,12 +79,29 @@ def stand_in_building(
     through = runs_through(brief.frame, beams)
     shown = find_lines(model, contacts, others, stated, through, bearing)
     said = _overrules(brief, matches, beams, spans)
-    unknown = dict(shown.unknown) | dict.fromkeys(several_spans(shown.lines, said), ONE_OF_SEVERAL)
-    lines = shown._replace(lines=overruled(shown.lines, said))
+    refused = _refused(shown.lines, said, beams)
+    unknown = {**shown.unknown, **refused}
+    left = [line for line in shown.lines if line.beams[0].key not in refused]
+    lines = shown._replace(lines=overruled(left, said))
     sources = dict.fromkeys(stated, "brief, [[supports]]")
     standing = standing_in_lines(lines.lines, beams, lines.remarks, sources)
-    stands = {key: each for key, each in standing.items() if key not in unknown}
-    return Framing(lines, stands, unknown, beams)
+    return Framing(lines, standing, unknown, beams)
+
+
+def _refused(
+    lines: Sequence[BeamLine], said: Overrules, beams: Mapping[str, Beam]
+) -> dict[str, Reason]:
+    """Why all beams of lines do not stand in which the span of one is stated."""
+    stated = set(several_spans(lines, said))
+    found: dict[str, Reason] = {}
+    for line in lines:
+        own = [beam.key for beam in line.beams if beam.key in stated]
+        if own:
+            mark = beams[own[0]].mark
+            reason = Reason(f"supports unknown: the span of {mark}, in one line with it, is stated")
+            found |= {each.key: reason for each in line.beams}
+            found |= dict.fromkeys(own, ONE_OF_SEVERAL)
+    return found
 
 
 def _overrules(
@@ -152,34 +177,44 @@ def hangers(framing: Framing, key: str) -> Iterator[Remark]:
             yield Remark(key, "demand", f"{framing.beams[other].mark} {_HANGERS}", "doubt")
 
 
-def passed_doubts(
-    framing: Framing, beams: Mapping[str, Beam], own: Mapping[str, str]
-) -> dict[str, list[Reason]]:
-    """Why beams may not be called adequate as what rests on them, or on that, is not all known.
-
-    ``own`` tells why what acts on a beam is not, by key.
-    """
-    found: dict[str, list[Reason]] = {}
-    for key in reversed(framing.lines.order):
-        for carrier, told in _twisted(framing, beams, key):
-            found.setdefault(carrier, []).append(told)
-        why = own.get(key) or (found[key][0].text if key in found else "")
-        if not why or key not in beams:
+def with_doubts(framing: Framing, own: Set[str]) -> Framing:
+    """The same with why beams may not be called adequate as what rests on them, on beams that they
+    go on into, or on what those carry is not all known; ``own`` are keys of beams of which what
+    acts on themselves is not."""
+    passed: dict[str, list[Reason]] = {}
+    beside: dict[str, list[Reason]] = {}
+    for line in framing.path.solved:
+        keys = [each.key for each in line.beams]
+        for key in keys:
+            for carrier, reason in _twisted(framing, key):
+                beside.setdefault(carrier, []).append(reason)
+        doubtful = [key for key in keys if key in own or key in passed or key in beside]
+        if not doubtful:
             continue
-        for carrier in dict.fromkeys(seat.carrier_beam for seat in framing.lines.seats[key]):
-            if key in framing.path.resting.get(carrier, ()):
-                text = f"reactions not included: not all that acts on {beams[key].mark} is known"
-                found.setdefault(carrier, []).append(Reason(text, blocking=False))
-    return found
+        for key in keys:
+            others = [other for other in doubtful if other != key]
+            if others:
+                beside.setdefault(key, []).append(_not_known(framing, others[0]))
+        for node in line.nodes:
+            for seat in node.seats:
+                if seat.beam in framing.path.resting.get(seat.carrier_beam, ()):
+                    passed.setdefault(seat.carrier_beam, []).append(_not_known(framing, seat.beam))
+    return replace(framing, passed=passed, beside=beside)
 
 
-def _twisted(framing: Framing, beams: Mapping[str, Beam], key: str) -> Iterator[tuple[str, Reason]]:
+def _not_known(framing: Framing, key: str) -> Reason:
+    mark = framing.beams[key].mark
+    return Reason(f"reactions not included: not all that acts on {mark} is known", blocking=False)
+
+
+def _twisted(framing: Framing, key: str) -> Iterator[tuple[str, Reason]]:
     """Beams into which one is fixed, whose moment twists them or loads them with one."""
     if key not in framing.standing:
         return
     spans = framing.standing[key].spans
     kinds = {"start": spans[0].span.start_support.kind, "end": spans[-1].span.end_support.kind}
     for seat in framing.lines.seats[key]:
-        if seat.carrier_beam in beams and kinds.get(seat.place) == "fixed":
-            text = f"torsion: {beams[key].mark} is fixed into it, and its moment is not followed"
+        if seat.carrier_beam in framing.beams and kinds.get(seat.place) == "fixed":
+            mark = framing.beams[key].mark
+            text = f"torsion: {mark} is fixed into it, and its moment is not followed"
             yield seat.carrier_beam, Reason(text, blocking=False)

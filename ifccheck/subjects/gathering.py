@@ -6,7 +6,7 @@ from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, replace
 from typing import TypeVar
 
-from ifccheck.beam import SELF, Beam, Contact, Given, Load, Model, Reason, Remark, Support
+from ifccheck.beam import Beam, Contact, Given, Load, Model, Reason, Remark, Support
 from ifccheck.brief.loads import loads_on_beams
 from ifccheck.brief.merging import Matches
 from ifccheck.brief.model import Brief
@@ -35,7 +35,7 @@ from ifccheck.frame.bar_ends import Surroundings
 from ifccheck.frame.carrying import contacts_of
 from ifccheck.frame.flanges import NO_MEETING, Slabs
 from ifccheck.frame.openings import Net, net_of
-from ifccheck.frame.reactions import loaded_from_side, resting_between, unknown_reactions
+from ifccheck.frame.reactions import loaded_from_side, resting_between
 from ifccheck.frame.slab_flanges import Asked, Counted, counted
 from ifccheck.frame.spans import Standing, stand_alone
 from ifccheck.framed import Framed
@@ -43,6 +43,7 @@ from ifccheck.rating.shape import deep_member, shape_reasons, stances
 from ifccheck.rating.stiffness import varies
 from ifccheck.rating.subject import Subject, Unrated
 from ifccheck.standards import Standard
+from ifccheck.subjects.acting import NO_STATEMENT, judge_loads, load_doubts
 from ifccheck.subjects.concrete import Concrete, concrete_of
 from ifccheck.subjects.findings import Findings, Sources
 from ifccheck.subjects.flange_widths import with_widths
@@ -51,25 +52,20 @@ from ifccheck.subjects.framed import framed
 from ifccheck.subjects.framing import (
     Framing,
     hangers,
-    passed_doubts,
-    settled_steps,
     stand_in_building,
+    with_doubts,
     with_reactions,
 )
 from ifccheck.subjects.slab_steel import SlabSteel, slab_steel_of
 from ifccheck.subjects.stated import stated_texts
 from ifccheck.subjects.steel import Steel, steel_of
-from ifccheck.units import clipped
 
 Row = TypeVar("Row", Load, Remark)
 
-_CRANE = "crane loads stand where the brief puts them: they are not moved, and carry no impact"
-NO_STATEMENT = BeamStatement()
 _VARYING_STIFFNESS = (
     "moments of its fixed ends are those of a span whose stiffness varies with its outline"
     " (concrete uncracked, steel left out)"
 )
-_THROUGH_THE_WEB = "loads are assumed to act through the web: torsion is not checked"
 
 
 @dataclass(frozen=True, slots=True)
@@ -80,6 +76,8 @@ class Gathered:
     unrated: tuple[Unrated, ...]
     loads: tuple[Load, ...]
     """On every beam, rated or not"""
+    through_lines: Mapping[str, frozenset[str]]
+    """Cases that act on beams through their lines, by key, rated or not"""
     framed: Framed | None = None
     """How beams were stood on what the model shows; None where the brief states it"""
     floors: FloorLoads = NO_FLOOR_LOADS
@@ -89,9 +87,39 @@ class Gathered:
 def gather(model: Model, brief: Brief, matches: Matches, standard: Standard) -> Gathered:
     """Gather everything that the rating of each beam of a model rests on."""
     beams = {beam.key: beam for beam in model.beams}
+    sources = _sources(model, brief, matches, standard, beams)
+    stated = {key: each.span for key, each in sources.statements.items() if each.span}
+    framing = None
+    if brief.frame:
+        framing = stand_in_building(model, brief, matches, sources.ignored, stated)
+    standing = framing.standing if framing else _standing_alone(beams, sources)
+    spans = {key: each.reach for key, each in standing.items()}
+    floors = floor_loads(model, brief, matches, standing, brief.basis.concrete_unit_weight)
+    sources = replace(sources, floors=floors)
+    loads = (
+        *floors.loads,
+        *loads_on_beams(brief, matches, beams, spans, sources.contacts),
+        *taken_loads(brief, model.loads, beams, spans),
+    )
+    if framing:
+        framing = _with_reactions(framing, beams, _by_beam(loads), sources)
+        loads = (*loads, *(load for own in framing.path.loads.values() for load in own))
+        sources = replace(sources, framing=framing)
+    of_beam = _by_beam(loads)
+    found = [
+        _one(beam, sources, standing.get(beam.key), of_beam.get(beam.key, ()))
+        for beam in model.beams
+    ]
+    return _gathered(found, loads, framing, floors)
+
+
+def _sources(
+    model: Model, brief: Brief, matches: Matches, standard: Standard, beams: Mapping[str, Beam]
+) -> Sources:
+    """What is known of all beams before it is told how they stand."""
     contacts = contacts_of(model, stated_ends(brief, matches))
     supports, remarks = _supports(brief, matches, beams, contacts)
-    sources = Sources(
+    return Sources(
         brief=brief,
         standard=standard,
         contacts=contacts,
@@ -113,29 +141,6 @@ def gather(model: Model, brief: Brief, matches: Matches, standard: Standard) -> 
         uncarried=uncarried(brief, model.loads),
         permanent_cases={case.name for case in brief.cases if case.nature == "permanent"},
     )
-    stated = {key: each.span for key, each in sources.statements.items() if each.span}
-    framing = None
-    if brief.frame:
-        framing = stand_in_building(model, brief, matches, sources.ignored, stated)
-    standing = framing.standing if framing else _standing_alone(beams, sources)
-    spans = {key: each.reach for key, each in standing.items()}
-    floors = floor_loads(model, brief, matches, standing, brief.basis.concrete_unit_weight)
-    sources = replace(sources, floors=floors)
-    loads = (
-        *floors.loads,
-        *loads_on_beams(brief, matches, beams, spans, contacts),
-        *taken_loads(brief, model.loads, beams, spans),
-    )
-    if framing:
-        framing = _with_reactions(framing, beams, _by_beam(loads), sources)
-        loads = (*loads, *(load for own in framing.path.loads.values() for load in own))
-        sources = replace(sources, framing=framing)
-    of_beam = _by_beam(loads)
-    found = [
-        _one(beam, sources, standing.get(beam.key), of_beam.get(beam.key, ()))
-        for beam in model.beams
-    ]
-    return _gathered(found, loads, framing, floors)
 
 
 def _gathered(
@@ -148,6 +153,7 @@ def _gathered(
         subjects=tuple(each for each in found if isinstance(each, Subject)),
         unrated=tuple(each for each in found if isinstance(each, Unrated)),
         loads=loads,
+        through_lines=framing.through_lines if framing else {},
         framed=framed(framing) if framing else None,
         floors=floors,
     )
@@ -187,27 +193,14 @@ def _with_reactions(
         for key in framing.standing
     }
     framing = with_reactions(framing, beams, loads, weights, sources.brief)
-    own = {}
-    for key, standing in framing.standing.items():
-        statement = sources.statements.get(key, NO_STATEMENT)
-        doubts = _unknown(beams[key], replace(sources, framing=framing), statement, standing)
-        if doubts or not (loads.get(key) or framing.path.loads.get(key) or statement.unloaded):
-            own[key] = doubts[0].text if doubts else "no load assigned"
-    return replace(framing, passed=passed_doubts(framing, beams, own))
-
-
-def _unknown(
-    beam: Beam, sources: Sources, statement: BeamStatement, standing: Standing
-) -> Sequence[Reason]:
-    """Why not all that acts on a beam is known."""
-    if statement.loads_complete:
-        return ()
-    contacts: Sequence[Contact] = sources.contacts.get(beam.key, ())
-    if sources.framing:
-        settled = settled_steps(sources.framing, beam.key)
-        contacts = [contact for contact in contacts if contact.other_step not in settled]
-    reasons = unknown_reactions(beam, contacts, standing, sources.unmeasured)
-    return [*reasons, *(sources.framing.passed.get(beam.key, ()) if sources.framing else ())]
+    known = replace(sources, framing=framing)
+    received = framing.path.loads
+    own = {
+        key
+        for key, standing in framing.standing.items()
+        if load_doubts(beams[key], known, standing, [*loads.get(key, ()), *received.get(key, ())])
+    }
+    return with_doubts(framing, own)
 
 
 def _not_concrete(model: Model) -> frozenset[int]:
@@ -250,7 +243,7 @@ def _one(
     findings.hear(sources.stances.get(beam.key, ()))
     _judge_standing(beam, sources, statement, standing, findings)
     steel = steel_of(beam, sources, findings) if beam.runs else None
-    _judge_loads(beam, sources, statement, standing, loads, findings)
+    judge_loads(beam, sources, statement, standing, loads, findings)
     net, more = Net(), SlabSteel()
     if standing and steel:
         slab = counted(beam, _asked(beam, sources, statement, concrete), loads)
@@ -303,7 +296,7 @@ def _judge_standing(
         findings.reasons += [overhang] if overhang else standing.reasons
         findings.remarks += standing.remarks
         if sources.framing:
-            findings.reasons += sources.framing.lines.crossing.get(beam.key, ())
+            findings.reasons += sources.framing.lines.doubts.get(beam.key, ())
             findings.remarks += hangers(sources.framing, beam.key)
         kinds = {end.kind for end in standing.ends}
         if varies(beam.runs) and kinds & {"fixed", "continuous"} and "free" not in kinds:
@@ -350,62 +343,3 @@ def _net(
 
 def _distinct(reasons: Sequence[Reason]) -> tuple[Reason, ...]:
     return tuple({reason.text: reason for reason in reasons}.values())
-
-
-def _judge_upward(sources: Sources, loads: Sequence[Load], findings: Findings) -> None:
-    """Note loads that lift the beam and may be a slip of the sign."""
-    for place in dict.fromkeys(load.origin for load in loads):
-        if not sources.upward.get(place, True):
-            findings.refuse(
-                f"load acts upward: {place}; write upward = true there if it is meant",
-                blocking=False,
-            )
-
-
-def _judge_model_loads(
-    beam: Beam, sources: Sources, statement: BeamStatement, findings: Findings
-) -> None:
-    """Note every doubt about what acts on the beam by the model's own analysis model."""
-    for doubt in sources.action_doubts.get(beam.key, ()):
-        if not (doubt.only_near and statement.loads_complete):
-            findings.refuse(doubt.text, blocking=False)
-    for name in sources.untaken.get(beam.key, ()):
-        which = f"load case {clipped(name)}" if name else "an action of no load case"
-        text = f"{which} of the model acts on it, and no case of the brief takes it"
-        findings.remarks.append(Remark(beam.key, "loads", text, "doubt"))
-    if not statement.loads_complete:
-        findings.reasons += sources.floors.reasons.get(beam.key, ())
-        for text in sources.uncarried:
-            findings.refuse(
-                f"{text}; give what of it acts on this beam under [[loads]] and write"
-                " loads_complete = true",
-                blocking=False,
-            )
-
-
-def _judge_loads(
-    beam: Beam,
-    sources: Sources,
-    statement: BeamStatement,
-    standing: Standing | None,
-    loads: Sequence[Load],
-    findings: Findings,
-) -> None:
-    """Note every doubt about what acts on the beam."""
-    if not statement.unloaded and all(load.case == SELF for load in loads):
-        findings.refuse("no load assigned", blocking=False)
-    if sources.upward:
-        _judge_upward(sources, loads, findings)
-    _judge_model_loads(beam, sources, statement, findings)
-    hung = sorted({load.origin for load in loads if load.face == "bottom"})
-    if hung:
-        places = ", ".join(hung)
-        findings.refuse(f"hung load: hanger steel is not checked ({places})", blocking=False)
-    if statement.torsion:
-        findings.refuse("torsion: it is not checked", blocking=False)
-    else:
-        findings.remarks.append(Remark(beam.key, "demand", _THROUGH_THE_WEB, "assumption"))
-    if sources.crane_cases and any(load.case in sources.crane_cases for load in loads):
-        findings.remarks.append(Remark(beam.key, "demand", _CRANE, "assumption"))
-    if standing:
-        findings.reasons += _unknown(beam, sources, statement, standing)
