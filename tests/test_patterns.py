@@ -22,22 +22,17 @@ from ifccheck.analysis.effects import Demands, Effects, case_share, combine, dem
 from ifccheck.analysis.line_table import LineTable
 from ifccheck.analysis.lines import continuous
 from ifccheck.analysis.loads import LINE, LoadTable, join_loads
-from ifccheck.analysis.patterns import (
-    ANYWHERE,
-    Parts,
-    governing_loading,
-    prescribed,
-    prescribed_effects,
-    span_places,
-    split_cases,
-)
+from ifccheck.analysis.parts import Parts, parts_of
 from ifccheck.analysis.statics import CaseEffects, effects_at, solve
 from ifccheck.analysis.stations import NOWHERE, StationTable, make_stations
 from tests.line_models import Line, tables
 
 PERMANENT, IMPOSED = 0, 1
 FACTORS = np.array([[[1.25, 0.9], [1.5, 0.0]], [[1.4, 0.9], [0.0, 0.0]]])
-BOTH = np.array([False, True])
+
+
+def places_of(lines: list[Line]) -> np.ndarray:
+    return np.concatenate([np.arange(len(line.lengths)) for line in lines])
 
 
 def model(lines: list[Line], heavy: float = 0.0) -> tuple[StationTable, CaseEffects, Parts]:
@@ -54,7 +49,9 @@ def model(lines: list[Line], heavy: float = 0.0) -> tuple[StationTable, CaseEffe
         heavy + 0.0 * beams,
     )
     loads = join_loads(weight, imposed)
-    split, parts = split_cases(loads, BOTH, span_places(table, len(beams)))
+    places = places_of(lines)
+    parts = parts_of([False, True], int(places.max()) + 1, apart=False)
+    split = parts.of(loads, places, apart=False)
     solved = continuous(solve(spans, split, len(parts.case)), without_settlement(table))
     stations = make_stations(spans, split, NOWHERE, 10)
     return stations, effects_at(solved, stations), parts
@@ -81,10 +78,11 @@ def test_patterned_spans_have_the_published_coefficients(reference: Path, count:
     entry = next(one for one in stock if one["id"] == f"ST-PATT-{count}")
     line = Line([1.0] * count, [[(LINE, 0.0, 1.0, 1.0, 1.0)]] * count, [1.0] * count)
     spans, loads, table = tables([line])
-    split, parts = split_cases(loads, np.array([True]), span_places(table, count))
+    parts = parts_of([True], count, apart=False)
+    split = parts.of(loads, np.arange(count), apart=False)
     solved = continuous(solve(spans, split, count), without_settlement(table))
     stations = make_stations(spans, split, NOWHERE, 1000)
-    effects = combine(effects_at(solved, stations), parts.factors(np.array([[[1.0, 0.0]]])))
+    effects = combine(effects_at(solved, stations), np.array([[[1.0, 0.0]]])[:, parts.case])
     rel = entry["tolerance_pct"] / 100.0
     found = {
         "Ms1": -effects.moment[0, LEAST_MOMENT, stations.beam == 0][-1],
@@ -102,7 +100,7 @@ def test_no_pattern_is_worse_than_what_is_found(seed: int, count: int) -> None:
     random = np.random.default_rng(seed)
     line = loaded_line(random, count)
     stations, cases, parts = model([line], heavy=4.0)
-    effects = combine(cases, parts.factors(FACTORS))
+    effects = combine(cases, FACTORS[:, parts.case])
     moments, shears = [], []
     for dead, chosen in product((1.25, 0.9), product((0.0, 1.5), repeat=count)):
         weights = np.array([dead, *chosen])
@@ -146,10 +144,10 @@ def test_a_rated_case_is_multiplied_in_all_its_parts(seed: int, count: int, by: 
     """total + (k - 1) share is what the case's loads times k give."""
     line = loaded_line(np.random.default_rng(seed), count)
     _, cases, parts = model([line], heavy=4.0)
-    acting = demands_of(combine(cases, parts.factors(FACTORS)), parts)
+    acting = demands_of(combine(cases, FACTORS[:, parts.case]), parts)
     more = FACTORS.copy()
     more[:, IMPOSED] *= by
-    wanted = demands_of(combine(cases, parts.factors(more)), parts).total
+    wanted = demands_of(combine(cases, more[:, parts.case]), parts).total
     share = acting.shares[0]
     for name in ("moment", "shear", "peak_sagging", "peak_hogging"):
         found = getattr(acting.total, name) + (by - 1.0) * getattr(share, name)
@@ -163,31 +161,18 @@ def test_a_rated_case_is_multiplied_in_all_its_parts(seed: int, count: int, by: 
 def test_the_share_of_a_case_is_the_sum_over_its_parts() -> None:
     line = loaded_line(np.random.default_rng(8), 4)
     _, cases, parts = model([line], heavy=4.0)
-    effects = combine(cases, parts.factors(FACTORS))
+    effects = combine(cases, FACTORS[:, parts.case])
     shares = [case_share(effects, case, parts.case) for case in (PERMANENT, IMPOSED)]
     for found, whole in zip(np.sum(shares, axis=0), (effects.moment, effects.shear), strict=True):
         np.testing.assert_allclose(found, whole, rtol=0, atol=1e-9 * np.abs(whole).max())
 
 
 def test_where_nothing_is_patterned_all_stays_as_it_is() -> None:
-    spans, loads, table = tables([loaded_line(np.random.default_rng(1), 3)], IMPOSED, 2)
-    place = span_places(table, len(spans.start))
-    same, parts = split_cases(loads, np.array([False, False]), place)
-    assert same is loads
-    assert parts.case.tolist() == [0, 1]
-    same, parts = split_cases(loads, BOTH, 0 * place)
-    assert same is loads
-    assert parts.place.tolist() == [ANYWHERE, ANYWHERE]
-    cases = effects_at(
-        continuous(solve(spans, loads, 2), table), make_stations(spans, loads, NOWHERE)
-    )
-    plain, split = (combine(cases, factors) for factors in (FACTORS, parts.factors(FACTORS)))
-    for name in ("moment", "shear"):
-        assert np.array_equal(getattr(plain, name), getattr(split, name))
-    first, second = demands_of(plain, None), demands_of(split, parts)
-    for one, other in ((first.total, second.total), (first.shares[0], second.shares[0])):
-        for name in one.__slots__:
-            assert np.array_equal(getattr(one, name), getattr(other, name))
+    _, loads, _ = tables([loaded_line(np.random.default_rng(1), 3)], IMPOSED, 2)
+    for by_spans, places in (([False, False], 3), ([False, True], 1)):
+        parts = parts_of(by_spans, places, apart=False)
+        assert parts.case.tolist() == [0, 1]
+        assert parts.of(loads, np.zeros(3, int), apart=False) is loads
 
 
 def test_lines_of_several_lengths_share_their_parts() -> None:
@@ -195,40 +180,6 @@ def test_lines_of_several_lengths_share_their_parts() -> None:
     short, long = loaded_line(random, 2), loaded_line(random, 4)
     stations, cases, parts = model([short, long])
     assert parts.case.tolist() == [0, 1, 1, 1, 1]
-    assert parts.place.tolist() == [ANYWHERE, 0, 1, 2, 3]
     on_short = stations.beam < 2
-    assert not cases.moment[np.ix_(parts.place > 1, on_short)].any()
-    assert cases.moment[np.ix_(parts.place == 1, on_short)].any()
-
-
-def test_values_of_a_case_stay_with_its_first_part() -> None:
-    parts = Parts(np.array([0, 1, 1]), np.array([ANYWHERE, 0, 1]))
-    assert parts.once(np.array([[3.0, 4.0], [5.0, 6.0]])).tolist() == [[3, 4], [5, 6], [0, 0]]
-
-
-def test_prescribed_loadings() -> None:
-    names, loaded = prescribed(4)
-    assert len(set(map(tuple, loaded.tolist()))) == len(names) == 6
-    assert loaded[0].tolist() == [1, 1, 1, 1]
-    assert loaded[1].tolist() == [1, 0, 1, 0]
-    assert loaded[4].tolist() == [0, 1, 1, 0]
-    assert len(prescribed(1)[0]) == 1
-    assert prescribed(2)[1].tolist() == [[1, 1], [1, 0], [0, 1]]
-
-
-def test_the_governing_loading_of_equal_spans() -> None:
-    """Spans are sagged most by their own and every other span; over a support, of the prescribed
-    loadings, the two beside it govern: textbook rules for a line of four spans."""
-    line = Line([1.0] * 4, [[(LINE, 0.0, 1.0, 1.0, 1.0)]] * 4, [1.0] * 4)
-    stations, cases, parts = model([line])
-    names, loaded = prescribed(4)
-    found = governing_loading(cases, parts, IMPOSED, loaded)
-    middle = [int(np.flatnonzero(stations.beam == span)[5]) for span in range(4)]
-    assert [names[row] for row in found[GREATEST_MOMENT, middle]] == [
-        "spans 1, 3, 5 ...", "spans 2, 4, 6 ...", "spans 1, 3, 5 ...", "spans 2, 4, 6 ...",
-    ]  # fmt: skip
-    support = int(np.flatnonzero(stations.beam == 0)[-1])
-    assert names[found[LEAST_MOMENT, support]] == "spans 1 and 2"
-    assert names[found[LEAST_SHEAR, support]] == "spans 1 and 2"
-    moment, _ = prescribed_effects(cases, parts, IMPOSED, loaded)
-    assert moment[0, support] == pytest.approx(-0.107143, rel=1e-5)
+    assert not cases.moment[np.ix_([3, 4], on_short)].any()
+    assert cases.moment[np.ix_([2], on_short)].any()
