@@ -8,13 +8,17 @@ from __future__ import annotations
 
 import math
 from collections.abc import Iterator, Sequence
+from dataclasses import dataclass
+from functools import cached_property
 from itertools import pairwise
 from typing import TYPE_CHECKING, NamedTuple
+
+import numpy as np
 
 from ifccheck.beam import Point
 
 if TYPE_CHECKING:
-    from shapely import LineString, Polygon
+    from shapely import LineString, Polygon, STRtree
     from shapely.geometry.base import BaseGeometry
 
 REACH = 1000.0
@@ -35,19 +39,20 @@ ON_LINE = 0.01
 """How far from an axis its own edges may be by rounding [mm]"""
 
 
-class Carrier(NamedTuple):
+@dataclass(frozen=True)
+class Carrier:
     """What carries a floor along a straight axis in plan [mm]."""
 
     start: Point
     end: Point
     half_width: float
 
-    @property
+    @cached_property
     def length(self) -> float:
         """Of its axis [mm]."""
         return math.dist(self.start, self.end)
 
-    @property
+    @cached_property
     def way(self) -> Point:
         """Unit vector from start to end."""
         (x0, y0), (x1, y1), length = self.start, self.end, self.length
@@ -93,12 +98,12 @@ def panels_of(outer: Polygon, carriers: Sequence[Carrier]) -> list[Panel]:
 
     margin = max((each.half_width for each in carriers), default=0.0) + 2.0 * TOUCHING
     domain = outer.buffer(margin, join_style="mitre")
-    own = [_line(each.start, each.end) for each in carriers]
-    lines = [part for row in range(len(carriers)) for part in _led_on(row, carriers, domain)]
-    within = [line.intersection(domain) for line in lines]
+    tree = STRtree([_line(each.start, each.end) for each in carriers])
+    ways = [_led_on(*each, domain) for each in _with_others(carriers, tree)]
+    within = [line.intersection(domain) for lines in ways for line in lines]
     noded = unary_union([*within, domain.boundary], grid_size=GRID)
     found, cuts, dangles, _ = polygonize_full([noded])
-    names = _Names(carriers, STRtree(own) if own else None)
+    names = _Names(carriers, tree)
     loose = [
         edge
         for line in (*dangles.geoms, *cuts.geoms)
@@ -118,23 +123,29 @@ def _line(start: Point, end: Point) -> LineString:
 class _Names:
     """Tells which carrier an edge belongs to."""
 
-    def __init__(self, carriers: Sequence[Carrier], tree: object) -> None:
+    def __init__(self, carriers: Sequence[Carrier], tree: STRtree) -> None:
         self._carriers, self._tree = carriers, tree
 
     def edges(self, points: Sequence[Sequence[float]]) -> list[Edge]:
         """Edges between places in a row."""
-        places = [(float(p[0]), float(p[1])) for p in points]
-        return [Edge(a, b, self._carrier(a, b)) for a, b in pairwise(places) if a != b]
-
-    def _carrier(self, start: Point, end: Point) -> int:
         from shapely import box
 
+        x, y = np.asarray(points)[:, :2].T
+        middle_x, middle_y = (x[1:] + x[:-1]) / 2.0, (y[1:] + y[:-1]) / 2.0
+        near = box(middle_x - REACH, middle_y - REACH, middle_x + REACH, middle_y + REACH)
+        rows: list[list[int]] = [[] for _ in near]
+        for edge, row in zip(*self._tree.query(near).tolist(), strict=True):
+            rows[edge].append(row)
+        places = list(zip(x.tolist(), y.tolist(), strict=True))
+        return [
+            Edge(a, b, self._carrier(a, b, own))
+            for (a, b), own in zip(pairwise(places), rows, strict=True)
+            if a != b
+        ]
+
+    def _carrier(self, start: Point, end: Point, rows: Sequence[int]) -> int:
         (x0, y0), (x1, y1) = start, end
         middle = (x0 + x1) / 2.0, (y0 + y1) / 2.0
-        if self._tree is None:
-            return -1
-        near = box(middle[0] - REACH, middle[1] - REACH, middle[0] + REACH, middle[1] + REACH)
-        rows = sorted(self._tree.query(near).tolist())  # type: ignore[attr-defined]
         found = [row for row in rows if self._lies_on(row, start, end)]
         return min(found, key=lambda row: (self._beyond(row, middle), row), default=-1)
 
@@ -179,10 +190,25 @@ def _panel(figure: Polygon, names: _Names, loose: Sequence[Edge]) -> Panel:
     )
 
 
-def _led_on(row: int, carriers: Sequence[Carrier], domain: BaseGeometry) -> Iterator[LineString]:
+def _with_others(
+    carriers: Sequence[Carrier], tree: STRtree
+) -> Iterator[tuple[Carrier, list[Carrier]]]:
+    """Each carrier with those that it may meet."""
+    from shapely import box
+
+    ends = np.array([(each.start, each.end) for each in carriers])
+    low, high = ends.min(axis=1) - 2.0 * REACH, ends.max(axis=1) + 2.0 * REACH
+    near: list[list[int]] = [[] for _ in carriers]
+    pairs = tree.query(box(low[:, 0], low[:, 1], high[:, 0], high[:, 1]))
+    for row, other in sorted(zip(*pairs.tolist(), strict=True)):
+        if other != row:
+            near[row].append(other)
+    for one, others in zip(carriers, near, strict=True):
+        yield one, [carriers[other] for other in others]
+
+
+def _led_on(one: Carrier, others: Sequence[Carrier], domain: BaseGeometry) -> Iterator[LineString]:
     """A carrier's axis, and what leads it on at either end, each a line of its own."""
-    one = carriers[row]
-    others = [each for number, each in enumerate(carriers) if number != row and _near(one, each)]
     start, before = _end_of(Carrier(one.end, one.start, one.half_width), others, domain)
     end, after = _end_of(one, others, domain)
     if math.dist(start, end) > 0.0:
@@ -190,15 +216,6 @@ def _led_on(row: int, carriers: Sequence[Carrier], domain: BaseGeometry) -> Iter
     for led in (before, after):
         if led:
             yield _line(*led)
-
-
-def _near(one: Carrier, other: Carrier) -> bool:
-    low = [min(a, b) - 2.0 * REACH for a, b in zip(one.start, one.end, strict=True)]
-    high = [max(a, b) + 2.0 * REACH for a, b in zip(one.start, one.end, strict=True)]
-    return all(
-        min(a, b) <= top and max(a, b) >= least
-        for a, b, least, top in zip(other.start, other.end, low, high, strict=True)
-    )
 
 
 def _end_of(

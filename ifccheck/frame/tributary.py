@@ -12,6 +12,7 @@ from __future__ import annotations
 
 import math
 from collections.abc import Iterator, Sequence
+from dataclasses import replace
 from typing import TYPE_CHECKING, Literal, NamedTuple
 
 from ifccheck.beam import Point, Ring
@@ -35,6 +36,8 @@ FILLED = 0.98
 """Part of its hull that a panel covers which is of one simple shape"""
 ROUNDING = 1e-10
 """Part of a floor that may be lost to rounding where panels meet"""
+TOUCHED = 1e-7
+"""Part of a floor that lies in a panel which it only touches, by rounding"""
 
 
 class Share(NamedTuple):
@@ -90,7 +93,7 @@ def shares(
     prepare(figure)
     found: dict[int, list[BaseGeometry]] = {}
     for panel in panels_of(Polygon(shifted(rings[0], origin)), local):
-        if figure.intersects(panel.figure):
+        if _has_part(figure, panel.figure):
             for carrier, cell in _cells(panel, local, span):
                 part = cell if figure.covers(cell) else figure.intersection(cell)
                 if part.area > 0.0:
@@ -103,9 +106,16 @@ def shares(
     return [Share(carrier, unary_union(parts)) for carrier, parts in sorted(found.items())]
 
 
+def _has_part(figure: BaseGeometry, panel: Polygon) -> bool:
+    """Whether a panel holds more of a floor than its edge."""
+    if figure.covers(panel):
+        return True
+    return bool(figure.intersection(panel).area > TOUCHED * figure.area)
+
+
 def _moved(carrier: Carrier, origin: Point) -> Carrier:
     start, end = shifted((carrier.start, carrier.end), origin)
-    return carrier._replace(start=start, end=end)
+    return replace(carrier, start=start, end=end)
 
 
 def _cells(

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from collections import defaultdict
 from collections.abc import Iterator, Mapping, Sequence
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 from typing import NamedTuple
 
 from ifccheck.beam import Beam, Face, FloorSlab, Load, Model, Reason, Remark, RemarkKind, Ring
@@ -282,7 +282,7 @@ def _text(figure: _Figure, width: Width) -> str:
 
 def _seen_from(carrier: Carrier, origin: tuple[float, float]) -> Carrier:
     start, end = ((x - origin[0], y - origin[1]) for x, y in (carrier.start, carrier.end))
-    return carrier._replace(start=start, end=end)
+    return replace(carrier, start=start, end=end)
 
 
 def _outlines(slab: FloorSlab) -> Iterator[tuple[Ring, ...]]:
