@@ -184,6 +184,38 @@ def test_floor_beyond_the_tip_of_a_cantilever_acts_with_its_arm(tmp_path: Path) 
     assert force(loads_of(rated)["K"]) == pytest.approx(15.0)
 
 
+FRAME = "[frame]\n"
+
+
+def test_what_a_slab_brings_goes_down_through_girders_to_the_columns(tmp_path: Path) -> None:
+    """A secondary beam in the middle hands half of its trapezoids to each girder; nothing is lost.
+
+    Two panels of 3 m by 4 m on a frame of 6 m by 4 m: the beam between them carries
+    a trapezoid of either, 2 x (4 - 1.5) x 1.5 x q in all, half at either end.
+    """
+    long = [lying("G1", 0, 0, 6000), lying("G2", 0, 4000, 6000)]
+    short = [lying(mark, x, 0, 4000, 90.0, columns=(0, 0)) for mark, x in (("E1", 0), ("E2", 6000))]
+    middle = MadeBeam(
+        SECTION, 3700.0, "M", BARS, columns=(0, 0), origin=(3000.0, 150.0, 3000.0), direction=90.0
+    )
+    data = model(*long, *short, middle, slabs=(slab(0, 0, 6000, 4000),))
+    text = brief(FRAME, floor()).replace('supports = ["pinned", "pinned"]\n', "")
+    rated = rate_model(tmp_path, data, text)
+    found = loads_of(rated)
+    by_hand = 2.0 * (4.0 - 1.5) * 1.5 * 4.8
+    assert sum(force([x for x in own if "floors" in x.origin]) for own in found.values()) == (
+        pytest.approx(24.0 * 4.8, rel=1e-9)
+    )
+    assert force(found["M"]) == pytest.approx(by_hand, rel=1e-9)
+    passed = [x for x in found["G1"] if "reaction of M" in x.origin]
+    assert force(passed) == pytest.approx(by_hand / 2.0, rel=1e-9)
+    framed = rated.rated[0].gathered.framed
+    assert framed is not None
+    rows = [row for row in framed.balance if row.case == "floor"]
+    assert sum(row.applied for row in rows) / 1e3 == pytest.approx(24.0 * 4.8, rel=1e-9)
+    assert all(abs(row.difference) <= 1e-9 * 24.0 * 4800.0 for row in rows)
+
+
 # What is told ------------------------------------------------------------------------------------
 
 

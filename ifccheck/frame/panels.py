@@ -7,7 +7,7 @@ An axis that stops short of another, at the face of a girder, a column or a wall
 from __future__ import annotations
 
 import math
-from collections.abc import Iterator, Sequence
+from collections.abc import Callable, Iterator, Sequence
 from dataclasses import dataclass
 from functools import cached_property
 from itertools import pairwise
@@ -92,8 +92,11 @@ class Panel(NamedTuple):
     """Axes that end within it; they carry on either side"""
 
 
-def panels_of(outer: Polygon, carriers: Sequence[Carrier]) -> list[Panel]:
-    """Cut a floor, and a margin round it that holds the axes beside it, into panels."""
+def panels_of(
+    outer: Polygon, carriers: Sequence[Carrier], wanted: Callable[[Polygon], bool]
+) -> list[Panel]:
+    """Cut a floor, and a margin round it that holds the axes beside it, into those panels that are
+    wanted."""
     from shapely import Polygon, STRtree, polygonize_full, unary_union
 
     margin = max((each.half_width for each in carriers), default=0.0) + 2.0 * TOUCHING
@@ -111,7 +114,8 @@ def panels_of(outer: Polygon, carriers: Sequence[Carrier]) -> list[Panel]:
         for edge in names.edges(list(line.coords))
         if edge.carrier >= 0 and names.is_own(edge)
     ]
-    return [_panel(figure, names, loose) for figure in found.geoms if isinstance(figure, Polygon)]
+    figures = (each for each in found.geoms if isinstance(each, Polygon) and wanted(each))
+    return [_panel(figure, names, loose) for figure in figures]
 
 
 def _line(start: Point, end: Point) -> LineString:

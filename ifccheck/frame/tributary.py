@@ -92,12 +92,12 @@ def shares(
     local = [_moved(each, origin) for each in carriers]
     prepare(figure)
     found: dict[int, list[BaseGeometry]] = {}
-    for panel in panels_of(Polygon(shifted(rings[0], origin)), local):
-        if _has_part(figure, panel.figure):
-            for carrier, cell in _cells(panel, local, span):
-                part = cell if figure.covers(cell) else figure.intersection(cell)
-                if part.area > 0.0:
-                    found.setdefault(carrier, []).append(part)
+    outer = Polygon(shifted(rings[0], origin))
+    for panel in panels_of(outer, local, lambda panel: _has_part(figure, panel)):
+        for carrier, cell in _cells(panel, local, span):
+            part = cell if figure.covers(cell) else figure.intersection(cell)
+            if part.area > 0.0:
+                found.setdefault(carrier, []).append(part)
     shared = sum(part.area for parts in found.values() for part in parts)
     if figure.area - shared > ROUNDING * figure.area:
         rest = figure.difference(unary_union([part for parts in found.values() for part in parts]))
