@@ -340,6 +340,7 @@ def within(stations: StationTable, stretch: Floats) -> StationTable:
     kept = (x >= low - SAME_PLACE) & (x <= high + SAME_PLACE)
     kept &= ~(first & (side < 0)) & ~(last & (side > 0))
     side = np.where(first, 1, np.where(last, -1, side))
+    x = np.minimum(np.maximum(x, low), high)  # rounding must not leave the stretch, nor its steel
     return StationTable(stations.beam[kept], x[kept], side[kept])
 
 
