@@ -166,10 +166,13 @@ _NAMING = tuple(_BY_BEAM)
 def _assumptions(ratings: Iterable[Rating]) -> tuple[Assumption, ...]:
     """Every assumption once, with the beams that it was made for."""
     beams: dict[str, dict[str, None]] = {}
+    by_words: dict[str, dict[str, None]] = {}
     for rating in ratings:
         for remark in rating.remarks:
             if remark.kind == "assumption":
-                beams.setdefault(_assumed(remark.text), {})[rating.beam] = None
+                if remark.text not in by_words:
+                    by_words[remark.text] = beams.setdefault(_assumed(remark.text), {})
+                by_words[remark.text][rating.beam] = None
     return tuple(Assumption(text, tuple(keys)) for text, keys in beams.items())
 
 

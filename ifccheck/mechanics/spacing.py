@@ -59,13 +59,14 @@ def distance_to_edges(y: Floats, z: Floats, edges: Floats) -> Floats:
     Floats
         [mm] (P)
     """
-    start, end = edges[..., 0, :], edges[..., 1, :]
-    point = np.stack([y, z], axis=-1)[:, None, :]
-    edge = end - start
-    length_squared = np.maximum(np.sum(edge * edge, axis=-1), 1e-12)
-    along = np.clip(np.sum((point - start) * edge, axis=-1) / length_squared, 0.0, 1.0)
-    nearest = start + along[..., None] * edge
-    return np.asarray(np.sqrt(np.sum((point - nearest) ** 2, axis=-1)).min(axis=1))
+    start_y, start_z = edges[..., 0, 0], edges[..., 0, 1]
+    along_y, along_z = edges[..., 1, 0] - start_y, edges[..., 1, 1] - start_z
+    length_squared = np.maximum(along_y * along_y + along_z * along_z, 1e-12)
+    from_y, from_z = y[:, None] - start_y, z[:, None] - start_z
+    share = np.clip((from_y * along_y + from_z * along_z) / length_squared, 0.0, 1.0)
+    off_y = y[:, None] - (start_y + share * along_y)
+    off_z = z[:, None] - (start_z + share * along_z)
+    return np.asarray(np.sqrt((off_y * off_y + off_z * off_z).min(axis=1)))
 
 
 IN_CONTACT = 1.1

@@ -24,13 +24,21 @@ def ratings_csv(report: Report) -> str:
     return "\n".join(lines)
 
 
-def _spelled(column: list[Cell]) -> list[str]:
-    """A column as it is written; a text that many beams share is looked at once.
+class _Cells(dict[Cell, str]):
+    """The cells of a column as they are written: what many beams share is spelled once.
 
-    Figures are not told apart by value, for 0.0 and -0.0 are equal.
+    Zeros are not kept, for 0.0 and -0.0 are equal.
     """
-    texts = {each: _quoted(each) for each in set(column) if isinstance(each, str)}
-    return [texts[each] if isinstance(each, str) else _figure(each) for each in column]
+
+    def __missing__(self, value: Cell) -> str:
+        text = _quoted(value) if isinstance(value, str) else _figure(value)
+        if value != 0.0:
+            self[value] = text
+        return text
+
+
+def _spelled(column: list[Cell]) -> list[str]:
+    return list(map(_Cells().__getitem__, column))
 
 
 def _figure(value: float | None) -> str:

@@ -9,7 +9,7 @@ from __future__ import annotations
 import json.encoder
 import math
 from collections.abc import Iterable, Iterator, Sequence
-from functools import lru_cache
+from functools import cache, lru_cache
 
 from ifccheck.beam import Beam, Opening, RatedSpan, Remark, Support
 from ifccheck.publish.report import Report
@@ -177,13 +177,11 @@ def _safe_load(safe: SafeLoad) -> str:
 
 def _remark(remark: Remark) -> str:
     beam = _text(remark.beam) if remark.beam is not None else "null"
-    return _remark_words(remark.stage, remark.kind, remark.text) % beam
+    return _REMARK % (beam, _word(remark.stage), _word(remark.kind), _text(remark.text))
 
 
-@lru_cache(maxsize=KEPT)
-def _remark_words(stage: str, kind: str, text: str) -> str:
-    """What remarks on many beams share, with a place for the beam."""
-    return _REMARK % ("%s", *(_text(each).replace("%", "%%") for each in (stage, kind, text)))
+_word = cache(_text)
+"""Of words of which there are few"""
 
 
 @lru_cache(maxsize=KEPT)

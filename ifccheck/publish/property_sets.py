@@ -134,9 +134,11 @@ _factor, _name = attrgetter("factor"), attrgetter("name")
 
 def _limit_states(rating: Rating) -> Properties:
     return tuple(
-        ResultProperty(state.name, "real", state.utilisation)
-        for state in rating.limit_states
-        if math.isfinite(state.utilisation)
+        [
+            ResultProperty(state.name, "real", state.utilisation)
+            for state in rating.limit_states
+            if math.isfinite(state.utilisation)
+        ]
     )
 
 

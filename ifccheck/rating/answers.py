@@ -104,10 +104,11 @@ def _limit_states(batch: Batch) -> list[tuple[LimitStateRating, ...]]:
         return _missing(batch.subjects[row])
 
     columns = [verdict.limit_state_ratings(each, batch.places, missing) for each in batch.states]
-    return [
-        verdict.with_unknown_steel(states, _silent_faces(batch, row))
-        for row, states in enumerate(zip(*columns, strict=True))
-    ]
+    states = list(zip(*columns, strict=True))
+    for row, subject in enumerate(batch.subjects):
+        if subject.silent:
+            states[row] = verdict.with_unknown_steel(states[row], _silent_faces(batch, row))
+    return states
 
 
 def unstated_stirrups(subject: Subject) -> list[str]:
@@ -166,8 +167,6 @@ def _missing(subject: Subject) -> str:
 
 def _silent_faces(batch: Batch, row: int) -> tuple[Face, ...]:
     """Faces in tension of whose bars no source speaks."""
-    if not batch.subjects[row].silent:
-        return ()
     stations = slice(batch.first[row], batch.first[row + 1])
     return tuple(
         face

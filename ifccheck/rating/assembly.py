@@ -129,9 +129,8 @@ def frame_of(subjects: Sequence[Subject], cases: Sequence[Case]) -> Frame:
         stated = [load for load in stated if not load.apart]
     place, parts = _parts(subjects, cases, apart=bool(apart))
     unit_weights = np.array([subject.unit_weight.value for subject in subjects])
-    body, _ = run_table([subject.weighed for subject in subjects], follows)
     ends = np.array([subject.ends for subject in subjects])
-    weight = self_weight(body, ends, row_of_case[SELF], unit_weights)
+    weight = self_weight(_weighed(subjects, follows, runs), ends, row_of_case[SELF], unit_weights)
     members = members_of(subjects, sections)
     lengths = np.array([subject.beam.length for subject in subjects])
     together = join_loads(load_table(stated, row_of_beam, row_of_case), weight)
@@ -160,6 +159,13 @@ def frame_of(subjects: Sequence[Subject], cases: Sequence[Case]) -> Frame:
         direct=np.array([one.direct for one in each]),
         natures=_natures(subjects, cases),
     )
+
+
+def _weighed(subjects: Sequence[Subject], follows: Sequence[bool], rated: RunTable) -> RunTable:
+    """What self weight is that of: what is rated, where every beam is rated as its body alone."""
+    if not any(subject.body for subject in subjects):
+        return rated
+    return run_table([subject.weighed for subject in subjects], follows)[0]
 
 
 def _parts(

@@ -9,7 +9,17 @@ from functools import cache, lru_cache
 
 import numpy as np
 
-from ifccheck.beam import Bars, Flange, FlangeWidth, Given, Opening, Outline, Stirrups, Support
+from ifccheck.beam import (
+    Bars,
+    Flange,
+    FlangeWidth,
+    Given,
+    Opening,
+    Outline,
+    Run,
+    Stirrups,
+    Support,
+)
 from ifccheck.mechanics.arrays import Ints
 from ifccheck.mechanics.outlines import bounds
 from ifccheck.notation import bars_in_a_row
@@ -119,8 +129,11 @@ def _support(name: str, label: str, support: Support) -> BasisItem:
 def _steel(subject: Subject) -> list[BasisItem]:
     lower: list[Bars] = []
     upper: list[Bars] = []
-    for bar in (bar for bar in subject.bars if bar.place == "own"):
-        (lower if bar.z < _middle(subject, bar) else upper).append(bar)
+    even = _even_middle(subject.beam.runs)
+    for bar in subject.bars:
+        if bar.place == "own":
+            middle = _middle(subject, bar) if even is None else even
+            (lower if bar.z < middle else upper).append(bar)
     source = subject.reinforcement_source
     return [
         BasisItem("BottomBars", "bars in the lower half", _bars_text(lower), "text", source),
@@ -198,6 +211,12 @@ def _middle(subject: Subject, bar: Bars) -> float:
     return _middle_of(outline_of(subject.beam.runs, (bar.start + bar.end) / 2.0))
 
 
+def _even_middle(runs: Sequence[Run]) -> float | None:
+    """Middle of the depth of a beam of one section from end to end [mm]; of others None."""
+    even = len(runs) == 1 and runs[0].outline_end is None
+    return _middle_of(runs[0].outline) if even else None
+
+
 @lru_cache(maxsize=4096)
 def _middle_of(outline: Outline) -> float:
     _, _, soffit, top = bounds(outline.rings)
@@ -205,16 +224,19 @@ def _middle_of(outline: Outline) -> float:
 
 
 def _bars_text(bars: Sequence[Bars]) -> str:
+    if len(bars) == 1:
+        return _row_text(bars)
     rows = sorted(bars_in_a_row(bars), key=lambda row: row[0].z)
     return "; ".join(map(_row_text, rows)) or "none"
 
 
 def _row_text(row: Sequence[Bars]) -> str:
     first, last = row[0], row[-1]
-    low, high = min(bar.z for bar in row), max(bar.z for bar in row)
+    heights = [bar.z for bar in row]
     return _layer_text(
-        first.count, first.designation, first.diameter, low, high, first.start, last.end
-    )
+        first.count, first.designation, first.diameter, min(heights), max(heights), first.start,
+        last.end,
+    )  # fmt: skip
 
 
 @lru_cache(maxsize=8192)

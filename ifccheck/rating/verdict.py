@@ -5,6 +5,7 @@ from __future__ import annotations
 import math
 from collections.abc import Callable, Sequence
 from dataclasses import dataclass
+from itertools import repeat
 from operator import attrgetter
 
 import numpy as np
@@ -70,35 +71,27 @@ def limit_state_ratings(
     worst, state, check = found.worst, found.state, found.shown
     incomplete = worst.incomplete & (worst.utilisation <= 1.0)
     demanded = incomplete | (worst.utilisation > 0.0)
-    rows = zip(
-        incomplete.tolist(),
-        np.where(incomplete, math.nan, worst.utilisation).tolist(),
-        np.where(demanded, places.positions(worst.shown), math.nan).tolist(),
-        places.combinations_at(worst.shown),
-        demanded.tolist(),
-        np.where(demanded, check.demand, 0.0).tolist(),
-        np.where(demanded, check.resistance, math.nan).tolist(),
-        strict=True,
-    )
-    return [
-        LimitStateRating(
-            name=state.name,
-            title=state.title,
-            covers=state.covers,
-            utilisation=utilisation,
-            position=position,
-            combination=combination if is_demanded else "",
-            demand=demand,
-            resistance=resistance,
-            demand_unit=state.demand_unit,
-            clause=state.clause,
-            counted=True,
-            why_not=(_outside(check, beam) or missing(beam)) if lacks else "",
+    why_not = [""] * incomplete.size
+    for beam in np.flatnonzero(incomplete).tolist():
+        why_not[beam] = _outside(check, beam) or missing(beam)
+    named = zip(places.combinations_at(worst.shown), demanded.tolist(), strict=True)
+    return list(
+        map(
+            LimitStateRating,
+            repeat(state.name),
+            repeat(state.title),
+            repeat(state.covers),
+            np.where(incomplete, math.nan, worst.utilisation).tolist(),
+            np.where(demanded, places.positions(worst.shown), math.nan).tolist(),
+            [name if is_demanded else "" for name, is_demanded in named],
+            np.where(demanded, check.demand, 0.0).tolist(),
+            np.where(demanded, check.resistance, math.nan).tolist(),
+            repeat(state.demand_unit),
+            repeat(state.clause),
+            repeat(True),  # counted
+            why_not,
         )
-        for beam, (
-            lacks, utilisation, position, combination, is_demanded, demand, resistance
-        ) in enumerate(rows)
-    ]  # fmt: skip
+    )
 
 
 def _outside(check: Check, beam: int) -> str | None:
@@ -142,9 +135,11 @@ def verdict_of(states: Sequence[LimitStateRating], reasons: Sequence[Reason]) ->
 def incomplete_reasons(states: Sequence[LimitStateRating]) -> tuple[Reason, ...]:
     """Reasons from the limit states that could not be worked out, each text once."""
     texts = dict.fromkeys(
-        s.why_not if s.why_not.startswith("outside") else f"{s.title}: {s.why_not}"
-        for s in states
-        if s.counted and math.isnan(s.utilisation)
+        [
+            s.why_not if s.why_not.startswith("outside") else f"{s.title}: {s.why_not}"
+            for s in states
+            if s.counted and math.isnan(s.utilisation)
+        ]
     )
     return tuple(Reason(text, blocking=False) for text in texts)
 
