@@ -62,6 +62,14 @@ def test_a_wall_that_stands_on_the_slab_does_not_carry_it() -> None:
     assert building(beam("B", 0, 1), members=[above]).under(SLAB, True).bearers[1:] == ()
 
 
+def test_a_trim_that_is_out_of_scope_relieves_no_beam_and_is_told() -> None:
+    trim = box_member(7, "IfcBeam", (0, 6000), (3900, 4100), (150, 450))
+    left_out = OutOfScope("guid 7", 7, "M7", "", "insulation", "")
+    under = building(beam("B", 0, 1), members=[trim], out_of_scope=(left_out,)).under(SLAB, True)
+    assert [one.told for one in under.bearers] == ["B (IfcBeam)"]
+    assert under.passed_over == ("M7 (IfcBeam)",)
+
+
 def test_a_beam_of_steel_carries_its_part() -> None:
     steel = box_member(7, "IfcBeam", (0, 6000), (3900, 4100), (150, 450))
     left_out = OutOfScope("guid 7", 7, "M7", "", "steel", "")

@@ -9,12 +9,14 @@ from pathlib import Path
 from typing import Any
 
 import pytest
+from shapely import Polygon
 
 from ifccheck.beam import Floors, FloorSlab, Load
 from ifccheck.errors import BriefError
 from ifccheck.ifc.reader import read_model
 from ifccheck.ifc.scoping import Choice
 from ifccheck.pipeline import Run
+from tests.bodies_of_beams import Bodies
 from tests.ifc_models import Building
 from tests.models import (
     BEARINGS,
@@ -354,6 +356,29 @@ def test_a_recess_takes_nothing_out() -> None:
     ring = building.outline((500, 500), (1500, 500), (1500, 900), (500, 900))
     building.void(product, building.extrusion(ring, 100.0, at=(0.0, 0.0, 3100.0)))
     assert only(building).openings == ()
+
+
+def faceted(building: Building, ring: Sequence[tuple[float, float]], top: float = 3200.0) -> Any:
+    count = len(ring)
+    corners = [(x, y, z) for z in (3000.0, top) for x, y in ring]
+    sides = [(n, (n + 1) % count, count + (n + 1) % count, count + n) for n in range(count)]
+    faces = [tuple(range(count))[::-1], tuple(range(count, 2 * count)), *sides]
+    return Bodies(building.file, 1.0).brep(corners, faces)
+
+
+def test_a_convex_plate_of_flat_faces_is_read() -> None:
+    building = Building()
+    made(building, faceted(building, [(0, 0), (4000, 0), (4500, 2500), (0, 2500)]))
+    (plate,) = only(building).plates
+    assert (plate.bottom, plate.top) == pytest.approx((3000, 3200))
+    assert Polygon(plate.rings[0]).area == pytest.approx(2500 * 4250)
+
+
+def test_a_plate_of_flat_faces_that_turns_back_is_not() -> None:
+    ell = [(0, 0), (4000, 0), (4000, 1000), (1000, 1000), (1000, 2500), (0, 2500)]
+    building = Building()
+    made(building, faceted(building, ell))
+    assert "no level plate" in only(building).unread
 
 
 def test_a_slab_that_is_no_level_plate_is_told() -> None:

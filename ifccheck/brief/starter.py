@@ -213,6 +213,10 @@ def _storeys(model: StarterModel, names: _Names) -> Iterator[str]:
         f"Loads on the beams of {model.survey.model.file_name}, storey by storey. Each entry gives"
         " one of line, point (with at), area (with tributary_width) or moment (with at)."
     )
+    yield from _prose(
+        "Entries of [[floors]] (case, with area or self_weight) share slabs out between the beams"
+        " under them; without one, what slabs bring is given here."
+    )
     for storey in sorted(by_storey, key=lambda each: (heights.get(each, math.inf), each)):
         yield ""
         yield from _storey(storey, heights.get(storey), by_storey[storey], model, names)

@@ -18,6 +18,8 @@ if TYPE_CHECKING:
     from shapely import Polygon, STRtree
 GAP = 100.0
 """A slab up to so much above a beam may lie on it by something that is not seen [mm]"""
+CARRYING = ("steel", "timber", "footing", "wall")
+"""Why beams are out of scope that carry slabs all the same"""
 NOT_LEVEL = "the beam is not level, and slabs are laid on level beams alone"
 
 
@@ -36,6 +38,8 @@ class Bearer(NamedTuple):
     wall: int = 0
     """STEP id of a wall, else 0"""
     level: bool = True
+    sure: bool = True
+    """It is not a beam out of scope that may be no more than a trim"""
 
     def carries(self, bottom: float, top: float) -> bool:
         """Whether it meets a slab between two levels from below, or within its depth."""
@@ -49,7 +53,7 @@ class Under(NamedTuple):
 
     bearers: tuple[Bearer, ...]
     passed_over: tuple[str, ...]
-    """Walls that may be partitions and are not counted on"""
+    """Walls that may be partitions, and beams out of scope that may be trims"""
     doubtful: tuple[tuple[str, str], ...]
     """Keys of beams that may carry it and are not counted on, each with why"""
 
@@ -63,10 +67,13 @@ class FloorCarriers:
     @cached_property
     def _all(self) -> list[Bearer]:
         model = self._model
-        of_steps = {beam.step_id for beam in model.beams}
-        others = {one.step_id for one in model.out_of_scope} - of_steps
+        others = {one.step_id: one.reason for one in model.out_of_scope}
         beams = [_of_beam(beam) for beam in model.beams if _lies(beam)]
-        steel = [_of_member(one) for one in model.members if one.step_id in others]
+        steel = [
+            _of_member(one, sure=others[one.step_id] in CARRYING)
+            for one in model.members
+            if one.step_id in others
+        ]
         walls = [_of_member(one) for one in model.members if kind_of(one.ifc_class) == "IfcWall"]
         return [*beams, *filter(None, steel), *filter(None, walls)]
 
@@ -87,8 +94,8 @@ class FloorCarriers:
         meeting = [self._all[row] for row in sorted(rows)]
         near = [one for one in meeting if one.level and one.carries(bottom, top)]
         bearing = self._model.floors.load_bearing
-        sure = [one for one in near if not one.wall or _bears(one, walls, bearing)]
-        over = [one.told for one in near if one not in sure and walls is None]
+        sure = [one for one in near if _bears(one, walls, bearing)]
+        over = [one.told for one in near if one not in sure and (walls is None or not one.wall)]
         doubts = [(one.beam, why) for one in meeting if (why := _doubt(one, bottom, top))]
         return Under(tuple(sure), tuple(over), tuple(doubts))
 
@@ -123,8 +130,11 @@ def _doubt(one: Bearer, bottom: float, top: float) -> str:
     return f"it lies {show(gap, 'dimension')} above the beam" if TOUCHING < gap <= GAP else ""
 
 
-def _bears(wall: Bearer, walls: bool | None, bearing: Set[int]) -> bool:
-    return wall.wall in bearing if walls is None else walls
+def _bears(one: Bearer, walls: bool | None, bearing: Set[int]) -> bool:
+    """Whether it is known to carry what lies on it."""
+    if one.wall:
+        return one.wall in bearing if walls is None else walls
+    return one.sure
 
 
 def _polygon(ring: Ring) -> Polygon:
@@ -151,7 +161,7 @@ def _of_beam(beam: Beam) -> Bearer:
     return Bearer(carrier, beam.key, told, tuple(corners), low, high, level=level)
 
 
-def _of_member(member: Member) -> Bearer | None:
+def _of_member(member: Member, *, sure: bool = True) -> Bearer | None:
     """A beam that is not in scope, or a wall; None for what stands upright or is in doubt."""
     box = member.box
     lying = [row for row in range(3) if abs(box.axes[row][2]) < LEVEL]
@@ -170,4 +180,5 @@ def _of_member(member: Member) -> Bearer | None:
     told = f"{member.name or member.guid} ({member.ifc_class})"
     low, high = levels_of(box)
     carrier = Carrier(ends[0], ends[1], width)
-    return Bearer(carrier, "", told, ring_of(box), low, high, member.step_id if is_wall else 0)
+    wall = member.step_id if is_wall else 0
+    return Bearer(carrier, "", told, ring_of(box), low, high, wall, sure=sure)

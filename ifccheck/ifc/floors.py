@@ -21,6 +21,7 @@ from ifccheck.ifc.entity import (
 from ifccheck.ifc.profiles import Profiles
 from ifccheck.ifc.slabs import LEVEL, SlabReader, drawn_rings, levels
 from ifccheck.ifc.vectors import unit
+from ifccheck.ifc.voids import FACETED
 
 if TYPE_CHECKING:
     from ifccheck.ifc.context import Context
@@ -34,7 +35,7 @@ SAME = 0.1
 """Places that differ by no more are one [mm]"""
 
 
-class _Hole(NamedTuple):
+class _Upright(NamedTuple):
     rings: tuple[Ring, ...]
     bottom: float
     top: float
@@ -62,14 +63,21 @@ class FloorReader:
         name, tag = text_at(entity, NAME), text_at(entity, TAG)
         named = (entity.id(), key, guid, entity.is_a(), name, tag)
         try:
+            placed = body_items(self._context, entity)
             items = self._slabs.plates(entity)
+            faceted = [
+                self._faceted(one) for one, each in zip(placed, items, strict=True) if not each
+            ]
             made = self._slabs.made_of(entity)
         except (UnreadableError, *ILL_TYPED):
             return FloorSlab(*named, unread=NO_PLATE)
         drawn = [each for each in items if each is not None]
-        if not items or len(drawn) < len(items):
+        if not items or None in faceted:
             return FloorSlab(*named, unread=NO_PLATE if items else NO_BODY)
-        plates = tuple(Plate(drawn_rings(prism), *levels(prism)) for prism, _ in drawn)
+        plates = (
+            *(Plate(drawn_rings(prism), *levels(prism)) for prism, _ in drawn),
+            *(Plate(*each) for each in faceted if each),
+        )
         openings, notes = self._openings(entity, plates)
         if any(cut for _, cut in drawn):
             notes = ("what is cut off its body counts as there", *notes)
@@ -77,6 +85,12 @@ class FloorReader:
             *named, plates=plates, openings=openings, notes=notes, unlike=made.unlike,
             density=made.density,
         )  # fmt: skip
+
+    def _faceted(self, placed: Placed) -> _Upright | None:
+        """A body of flat faces that is a convex level plate; None for any other."""
+        if not any(placed.item.is_a(kind) for kind in FACETED):
+            return None
+        return _upright_hull(self._slabs.points(placed))
 
     def _openings(
         self, entity: Entity, plates: tuple[Plate, ...]
@@ -99,12 +113,12 @@ class FloorReader:
             ]
         return tuple(found), tuple(notes)
 
-    def _hole(self, placed: Placed) -> _Hole | None:
+    def _hole(self, placed: Placed) -> _Upright | None:
         """An opening that stands upright; None for any other."""
         if placed.item.is_a() == "IfcExtrudedAreaSolid":
             prism = extrusion(self._context, self._profiles, placed)
             if _upright(prism):
-                return _Hole(drawn_rings(prism), *levels(prism))
+                return _Upright(drawn_rings(prism), *levels(prism))
         return _upright_hull(self._slabs.points(placed))
 
     def _load_bearing(self) -> frozenset[int]:
@@ -121,7 +135,7 @@ def _upright(prism: Prism) -> bool:
     return min(abs(prism.axes[2][2]), abs(unit(prism.along)[2])) >= LEVEL
 
 
-def _upright_hull(points: Cloud) -> _Hole | None:
+def _upright_hull(points: Cloud) -> _Upright | None:
     """A convex body of level faces and upright sides by its corners; None for any other."""
     from shapely import MultiPoint, Point, Polygon
 
@@ -138,4 +152,6 @@ def _upright_hull(points: Cloud) -> _Hole | None:
     inside = MultiPoint(points[:, :2]).difference(hull.exterior.buffer(SAME))
     if between.any() or not inside.is_empty:
         return None
-    return _Hole((tuple((float(x), float(y)) for x, y in hull.exterior.coords[:-1]),), bottom, top)
+    return _Upright(
+        (tuple((float(x), float(y)) for x, y in hull.exterior.coords[:-1]),), bottom, top
+    )

@@ -24,8 +24,8 @@ NAMED = 5
 GRAVITY = 9.80665e-9
 """N/mm3 per kg/m3"""
 PASSED_OVER = (
-    "walls that the model does not call load bearing do not carry slab (they would with walls ="
-    " true)"
+    "not counted on to carry slab, as nothing says that they do (of walls LoadBearing in the model"
+    " does, or walls = true)"
 )
 FACES = "slab stops at the faces of beams, so that nothing is laid on their own width"
 BESIDE = 1.0
