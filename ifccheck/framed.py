@@ -116,6 +116,8 @@ class Framed:
     """Why the others do not stand"""
     balance: tuple[Balance, ...] = ()
     """One for each storey and case"""
+    left_out: tuple[str, ...] = ()
+    """Keys of the beams of which loads and reactions are not in the balance"""
 
     @property
     def all_lines(self) -> Iterator[FramedLine]:

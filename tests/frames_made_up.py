@@ -53,7 +53,7 @@ def framed_hall(report: Report, balance: tuple[Balance, ...] = BALANCE) -> Repor
         stated = FramedEnd("fixed", 0.0, "the brief", stated=True)
         lines[beams["W-1"].key] = alone(beams["W-1"], stated, FramedEnd("free", 0.0))
     unknown = {third.key: "supports unknown: nothing carries it; say how its ends stand under X"}
-    framed = Framed(lines, unknown, balance)
+    framed = Framed(lines, unknown, balance, left_out=(third.key,))
     sheet = report.sheet
     return replace(
         report, framed=framed, sheet=lambda key: replace(sheet(key), line=lines.get(key))

@@ -14,6 +14,7 @@ from ifccheck.publish.framed_words import standing_words
 from ifccheck.publish.load_words import single_loads
 from ifccheck.subjects import framed_by_the_model
 from tests.frames_of_beams import (
+    Setting,
     face_to_face,
     girders,
     ground,
@@ -21,6 +22,7 @@ from tests.frames_of_beams import (
     read,
     walls,
 )
+from tests.ifc_models import Building
 from tests.made_subjects import line, point, rated, subject
 from tests.test_rules_that_protect_strength import check_adequate, check_short
 
@@ -30,14 +32,17 @@ SAMPLE = Path(__file__).resolve().parents[1] / "sample_models"
 @pytest.fixture(scope="module")
 def run(tmp_path_factory: pytest.TempPathFactory) -> pipeline.Run:
     """The sample building, which stands on what its model shows."""
-    folder = tmp_path_factory.mktemp("frame")
+    return rated_in(tmp_path_factory.mktemp("frame"))
+
+
+def rated_in(folder: Path, more: str = "") -> pipeline.Run:
     text = (SAMPLE / "brief.toml").read_text(encoding="utf-8")
     said = 'supports = ["pinned", "pinned"]\n'
     if said in text:
         text = text.replace(said, "").replace(
             "[reinforcement]\n", "[frame]\n\n[reinforcement]\n", 1
         )
-    (folder / "brief.toml").write_text(text, encoding="utf-8")
+    (folder / "brief.toml").write_text(text + more, encoding="utf-8")
     for table in SAMPLE.glob("*.csv"):
         (folder / table.name).write_bytes(table.read_bytes())
     return pipeline.rate([SAMPLE / "print_works.ifc"], folder / "brief.toml")
@@ -62,6 +67,31 @@ def test_what_reaches_the_ground_is_what_the_brief_puts_on_the_beams(run: pipeli
     found = {row.case: row.ground for row in totals(framed.balance) if row.case != SELF}
     assert {case: force for case, force in found.items() if force} == pytest.approx(put, rel=1e-9)
     assert all(balances(row) for row in (*framed.balance, *totals(framed.balance)))
+
+
+def test_the_check_names_what_it_leaves_out_and_nothing_else(tmp_path: Path) -> None:
+    """Beams in one line of which a span is stated, and one in the air, do not stand."""
+    framed = framed_of(rated_in(tmp_path, '\n[[beams]]\nbeams = ["G-105"]\nspan = "7.2 m"\n'))
+    assert set(framed.left_out) == set(framed.unknown)
+    assert len(framed.left_out) == 3
+    assert [text for text in framed.unknown.values() if "makes several" in text]
+
+
+def test_a_beam_under_one_whose_stated_span_is_refused_is_not_adequate(tmp_path: Path) -> None:
+    """G1 to G3 carry TOP, of whose two spans the engineer states one: nothing is passed on."""
+    building = Building("IFC4")
+    for make in girders():
+        make(building, Setting())
+    building.file.write(str(tmp_path / "hall.ifc"))
+    (tmp_path / "brief.toml").write_text(
+        '[basis]\nstandard = "csa-a23.3-14"\nconcrete_unit_weight = "24 kN/m3"\n[frame]\n'
+        '[[beams]]\nbeams = ["*"]\nunloaded = true\n'
+        '[[beams]]\nbeams = ["TOP"]\nspan = "4.0 m"\n'
+    )
+    report = pipeline.rate([tmp_path / "hall.ifc"], tmp_path / "brief.toml").reports[0]
+    for beam in report.model.beams:
+        texts = " ".join(reason.text for reason in report.ratings[beam.key].reasons)
+        assert ("reactions not included: TOP" in texts) == (beam.mark in {"G1", "G2", "G3"})
 
 
 def test_the_sheet_of_a_beam_shows_its_own_weight_once(run: pipeline.Run) -> None:

@@ -190,7 +190,7 @@ def _equilibrium(report: Report, numbers: Mapping[str, int]) -> _Equilibrium | N
     return _Equilibrium(
         words=(words := equilibrium_words(framed))[0].upper() + words[1:],
         rows=rows,
-        left_out=[(numbers[key], report.beam(key).mark) for key in framed.unknown],
+        left_out=[(numbers[key], report.beam(key).mark) for key in framed.left_out],
         balances=all(row.balances for row in rows),
     )
 

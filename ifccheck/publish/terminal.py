@@ -53,7 +53,7 @@ def _equilibrium(report: Report, to: Terminal) -> Iterator[Text]:
         return
     wrong = any(not row.balances for row in equilibrium_rows(framed))
     yield to.text(equilibrium_words(framed), style=SHORT if wrong else "")
-    marks = [report.beam(key).mark for key in framed.unknown]
+    marks = [report.beam(key).mark for key in framed.left_out]
     if left_out := left_out_words(marks):
         yield to.text(left_out)
 

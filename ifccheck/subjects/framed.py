@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Mapping, Sequence
+from dataclasses import replace
 
 from ifccheck.beam import Beam, Model, Reason
 from ifccheck.brief.model import FrameOptions
@@ -15,7 +16,11 @@ from ifccheck.subjects.framing import Framing, runs_through
 
 def framed(framing: Framing) -> Framed:
     """What is shown of the beams of a run."""
-    return _framed(framing.lines.lines, framing.unknown, framing.beams, framing.path.balance)
+    lines, path = framing.lines.lines, framing.path
+    shown = _framed(lines, framing.unknown, framing.beams)
+    solved = {each.key for line in path.solved for each in line.beams}
+    left_out = tuple(key for key in framing.beams if key not in solved)
+    return replace(shown, balance=_summed(path.balance), left_out=left_out)
 
 
 def framed_by_the_model(model: Model) -> Framed:
@@ -24,21 +29,18 @@ def framed_by_the_model(model: Model) -> Framed:
     contacts = find_contacts(model.beams, model.members)
     others = contacts_of_others(model.beams, model.members)
     lines = find_lines(model, contacts, others, {}, runs_through(FrameOptions(), beams))
-    return _framed(lines.lines, lines.unknown, beams, ())
+    return _framed(lines.lines, lines.unknown, beams)
 
 
 def _framed(
-    lines: Iterable[BeamLine],
-    unknown: Mapping[str, Reason],
-    beams: Mapping[str, Beam],
-    balance: Sequence[Balance],
+    lines: Iterable[BeamLine], unknown: Mapping[str, Reason], beams: Mapping[str, Beam]
 ) -> Framed:
     found: dict[str, FramedLine] = {}
     for line in lines:
         told = FramedLine(tuple(_span(span, beams[span.beam].mark) for span in line.spans))
         found.update({each.key: told for each in line.beams if each.key not in unknown})
     whys = {key: reason.text for key, reason in unknown.items()}
-    return Framed(found, whys, _summed(balance))
+    return Framed(found, whys)
 
 
 def _span(span: LineSpan, mark: str) -> FramedSpan:
