@@ -367,3 +367,14 @@ def test_an_inner_support_that_both_sides_press_is_not_told(tmp_path: Path) -> N
     x, low, _ = envelope(sheets_of(run)["T1"], "shear force")
     assert low[-1] < 0.0
     assert x.size
+
+
+def test_a_beam_that_goes_on_into_one_that_does_not_stand_is_not_adequate(tmp_path: Path) -> None:
+    """T2's other end lies on a beam in the air: it may lean on T1 for all that is known."""
+    beams, columns = line_on_columns([6000.0, 6000.0], cut=True)
+    air = lying("AIR", (12000.0, -1000.0, -400.0), 2000.0, 90.0, depth=400.0)
+    entries = uniform("floor", 10.0), COMPLETE.format("T1")
+    run = rated_frame(tmp_path, [*beams, air], columns[:2], *entries)
+    assert "supports unknown" in reasons(run, "T2")
+    assert verdicts(run)["T1"] is Verdict.NOT_RATED
+    assert "it goes on into T2" in reasons(run, "T1")
