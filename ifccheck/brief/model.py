@@ -25,7 +25,7 @@ ReinforcementField = Literal[
 
 
 SlabFlange = Literal["none", "level", "on top"]
-Restraint = Literal["pinned", "fixed"]
+Restraint = Literal["pinned", "fixed", "columns"]
 Continuity = Literal["bars", "always", "never"]
 """Whether slab that is modelled apart counts as a flange: none; what is level with the beam; also
 what lies on its top."""

@@ -2,13 +2,21 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping, Sequence
+from collections.abc import Callable, Mapping, Sequence, Set
 from typing import Literal, NamedTuple
 
 from ifccheck.beam import Given
 from ifccheck.frame.beam_lines import BeamLine, LineSpan, Node, SpanEnd
+from ifccheck.frame.seats import Seat
 
-Restraint = Literal["pinned", "fixed"]
+Restraint = Literal["pinned", "fixed", "columns"]
+Springs = Callable[[Seat], float]
+"""What the columns at a seat need to turn, in units of the beam's E [mm3]"""
+
+
+def no_spring(seat: Seat) -> float:
+    """Hold no moment at any seat."""
+    return 0.0
 
 
 class Overrules(NamedTuple):
@@ -23,6 +31,10 @@ class Overrules(NamedTuple):
     [mm]"""
     spans: Mapping[str, Given] = {}
     """Length of the span of a beam [mm]"""
+    stated: Set[tuple[str, str]] = frozenset()
+    """Ends of beams that entries of the brief speak of"""
+    springs: Springs = no_spring
+    """Where columns restrain ends"""
 
 
 def overruled(lines: Sequence[BeamLine], said: Overrules) -> tuple[BeamLine, ...]:
@@ -48,7 +60,13 @@ def _overruled(line: BeamLine, said: Overrules) -> BeamLine:
     first, last = spans[0].ends[0], spans[-1].ends[1]
     nodes = [*line.nodes]
     nodes[0], nodes[-1] = _node(nodes[0], first), _node(nodes[-1], last)
-    return BeamLine(line.beams, spans, tuple(nodes))
+    return BeamLine(line.beams, spans, tuple(_sprung(node, said) for node in nodes))
+
+
+def _sprung(node: Node, said: Overrules) -> Node:
+    if node.kind != "continuous" or not node.seats:
+        return node
+    return node._replace(spring=said.springs(node.seats[0]))
 
 
 def _node(node: Node, end: SpanEnd) -> Node:
@@ -64,12 +82,21 @@ def _span(span: LineSpan, said: Overrules) -> LineSpan:
 def _end(span: LineSpan, end: SpanEnd, which: str, said: Overrules) -> SpanEnd:
     if end.seat is None:
         return end
-    if said.restraint == "fixed" and end.kind == "pinned" and end.seat.built_in:
-        end = end._replace(kind="fixed")
+    seat = end.seat
+    end = _restrained(end, seat, said)
     width = said.bearings.get((span.beam, which), 0.0)
-    if not width or end.seat is None or end.seat.place != which:
+    if not width or seat.place != which:
         return end
     return _borne(end, which, width, *said.sizes[span.beam])
+
+
+def _restrained(end: SpanEnd, seat: Seat, said: Overrules) -> SpanEnd:
+    """An end of which the brief says nothing, as it is restrained."""
+    if end.kind != "pinned" or (seat.beam, seat.place) in said.stated:
+        return end
+    if said.restraint == "fixed" and seat.built_in:
+        return end._replace(kind="fixed")
+    return end._replace(kind="continuous") if said.springs(seat) > 0.0 else end
 
 
 def _borne(end: SpanEnd, which: str, width: float, depth: float, length: float) -> SpanEnd:

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterator, Mapping, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from functools import lru_cache
 
 import numpy as np
@@ -11,7 +11,7 @@ import numpy as np
 from ifccheck.analysis.line_table import LineTable, simple_lines
 from ifccheck.analysis.loads import LoadTable, join_loads, load_table, on_spans
 from ifccheck.analysis.parts import Parts, parts_of
-from ifccheck.analysis.spans import KIND_CODES, SpanTable
+from ifccheck.analysis.spans import KIND_CODES, SpanTable, in_line
 from ifccheck.analysis.stations import make_stations, places
 from ifccheck.analysis.stiffness import Curvature, indeterminate, places_between
 from ifccheck.beam import SELF, Beam, Case, Load, Outline
@@ -110,9 +110,10 @@ def loads_on(
 
 
 def line_table(rows: Rows, beams: Mapping[str, Beam]) -> LineTable:
-    """The lines of more than one span."""
-    counts = np.array([len(line.spans) for line in rows.lines])
-    joined = np.flatnonzero(counts[rows.line] > 1)
+    """The lines that hold a moment at some support: of several spans, or with columns."""
+    held = np.zeros(len(rows.lines), np.bool_)
+    held[rows.line[in_line(rows.spans)]] = True
+    joined = np.flatnonzero(held[rows.line])
     order = joined[np.lexsort((rows.place[joined], rows.line[joined]))]
     _, line = np.unique(rows.line[order], return_inverse=True)
     stiffness = np.array(
@@ -125,7 +126,11 @@ def line_table(rows: Rows, beams: Mapping[str, Beam]) -> LineTable:
             )
         ]
     )
-    return simple_lines(rows.spans, line, order, rows.against[order] == 1, stiffness)
+    table = simple_lines(rows.spans, line, order, rows.against[order] == 1, stiffness)
+    springs = [
+        node.spring for each in np.flatnonzero(held).tolist() for node in rows.lines[each].nodes
+    ]
+    return replace(table, rotational_spring=np.array(springs))
 
 
 def curvature_on(rows: Rows, beams: Mapping[str, Beam], loads: LoadTable) -> Curvature | None:

@@ -53,6 +53,8 @@ class Node(NamedTuple):
     kind: EndKind
     seats: tuple[Seat, ...]
     """Of the beam, or of the two that meet there; none at a tip"""
+    spring: float = 0.0
+    """What its columns need to turn, in units of the beam's E [mm3]; of a continuous one"""
 
 
 class LineBeam(NamedTuple):

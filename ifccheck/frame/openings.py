@@ -105,7 +105,7 @@ def net_of(
 def _bends_back(spans: Sequence[RatedSpan]) -> bool:
     """Whether weight on one part of the beam may relieve another."""
     kinds = spans[0].span.start_support.kind, spans[-1].span.end_support.kind
-    return len(spans) > 1 or ("fixed" in kinds and "free" not in kinds)
+    return len(spans) > 1 or ("free" not in kinds and set(kinds) != {"pinned"})
 
 
 def _without_openings(beam: Beam, slab: Counted) -> Net:

@@ -4,22 +4,24 @@ from __future__ import annotations
 
 from collections.abc import Iterator, Mapping, Sequence, Set
 from dataclasses import dataclass, field, replace
-from functools import cached_property
+from functools import cache, cached_property
 
 from ifccheck.beam import Beam, Contact, Given, Load, Model, Reason, Remark
 from ifccheck.brief.cases import cases_of
 from ifccheck.brief.merging import Matches
 from ifccheck.brief.model import Brief, FrameOptions
 from ifccheck.brief.supports import stated_bearings, stated_ends
-from ifccheck.demand.overrules import Overrules, overruled, several_spans
+from ifccheck.demand.overrules import Overrules, Springs, overruled, several_spans
 from ifccheck.demand.path import LoadPath, load_path
 from ifccheck.demand.standing import standing_in_lines
 from ifccheck.errors import BriefError
 from ifccheck.frame.beam_lines import BeamLine
 from ifccheck.frame.boxes import section_extent
+from ifccheck.frame.column_springs import column_stiffness
 from ifccheck.frame.contacts import contacts_of_others, find_contacts
 from ifccheck.frame.joints import RunsThrough, by_bars
 from ifccheck.frame.lines import Lines, find_lines
+from ifccheck.frame.seats import Seat
 from ifccheck.frame.spans import Standing
 from ifccheck.units import clipped
 
@@ -79,6 +81,8 @@ def stand_in_building(
     through = runs_through(brief.frame, beams)
     shown = find_lines(model, contacts, others, stated, through, bearing)
     said = _overrules(brief, matches, beams, spans)
+    if brief.frame.restraint == "columns":
+        said = said._replace(springs=column_springs(model, beams, contacts))
     refused = _refused(shown.lines, said, beams)
     unknown = {**shown.unknown, **refused}
     left = [line for line in shown.lines if line.beams[0].key not in refused]
@@ -86,6 +90,20 @@ def stand_in_building(
     sources = dict.fromkeys(stated, "brief, [[supports]]")
     standing = standing_in_lines(lines.lines, beams, lines.remarks, sources)
     return Framing(lines, standing, unknown, beams)
+
+
+def column_springs(
+    model: Model, beams: Mapping[str, Beam], contacts: Mapping[str, Sequence[Contact]]
+) -> Springs:
+    """What columns above and below a support need to turn, with far ends fixed."""
+    members = {member.step_id: member for member in model.members}
+
+    @cache
+    def spring(seat: Seat) -> float:
+        touching = contacts.get(seat.beam, ())
+        return column_stiffness(beams[seat.beam], seat, touching, members, "fixed")
+
+    return spring
 
 
 def _refused(
@@ -110,7 +128,8 @@ def _overrules(
     assert brief.frame is not None
     bearings = stated_bearings(brief, matches)
     sizes = {key: (_depth(beams[key]), beams[key].length) for key, _ in bearings if beams[key].runs}
-    return Overrules(brief.frame.restraint, bearings, sizes, spans)
+    ends = {(key, end) for key, own in stated_ends(brief, matches).items() for end in own}
+    return Overrules(brief.frame.restraint, bearings, sizes, spans, ends)
 
 
 def _depth(beam: Beam) -> float:
