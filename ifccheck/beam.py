@@ -44,13 +44,15 @@ from ifccheck.standing import RatedSpan as RatedSpan
 from ifccheck.standing import Span as Span
 from ifccheck.standing import Support as Support
 from ifccheck.standing import SupportKind as SupportKind
+from ifccheck.wheels import Travel as Travel
+from ifccheck.wheels import Wheels as Wheels
 
 Vector = tuple[float, float, float]
 Point = tuple[float, float]
 Ring = tuple[Point, ...]
 
 SourceName = Literal["schedule", "bars", "sections", "properties"]
-LoadKind = Literal["line", "point", "moment"]
+LoadKind = Literal["line", "point", "moment", "train"]
 Face = Literal["top", "bottom"]
 BarPlace = Literal["own", "near web", "in flange"]
 """Whether a bar is one of the beam itself, or lies in slab that is its flange: near to the web or
@@ -374,7 +376,8 @@ class Load(NamedTuple):
     line: intensity [N/mm] from ``values[0]`` at ``start`` to ``values[1]`` at ``end``;
     point: force [N] ``values[0]`` at ``start``; moment: ``values[0]`` [N*mm] at ``start``,
     positive where it turns the left part into sagging just left of it (anticlockwise seen
-    with x to the right and z up): the moment falls by the value from left to right.
+    with x to the right and z up): the moment falls by the value from left to right;
+    train: wheels that move between ``start`` and ``end``, ``values[0]`` [N] in all.
     """
 
     beam: str
@@ -390,3 +393,5 @@ class Load(NamedTuple):
     apart: bool = False
     """Acts where the others of its case on that span do not: what rests on a beam presses on it or
     lifts it"""
+    travel: Travel | None = None
+    """How a train moves; None for what stands still"""

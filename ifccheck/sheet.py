@@ -32,11 +32,12 @@ from ifccheck.rating.results import LimitStateRating, Rating
 from ifccheck.rating.runs import outline_of
 from ifccheck.rating.shares import Arising, Shares, arising
 from ifccheck.rating.subject import Subject
+from ifccheck.rating.support_reactions import CaseReaction as CaseReaction
+from ifccheck.rating.support_reactions import reactions_of
 from ifccheck.standards import CalculationLine
 from ifccheck.units import show, show_ratio
 
 Floats = npt.NDArray[np.float64]
-Ints = npt.NDArray[np.intp]
 Bools = npt.NDArray[np.bool_]
 
 NOTHING_DEMANDED = "nothing demanded"
@@ -75,18 +76,8 @@ class CaseShare:
     """Those of them that it loads here, from 0"""
     lifting: tuple[int, ...] = ()
     """Those of them where reactions of beams that rest on it lift"""
-
-
-@dataclass(frozen=True, slots=True)
-class CaseReaction:
-    """What one case, unfactored, asks of the supports."""
-
-    case: str
-    forces: tuple[float, ...]
-    """Upward, on the beam, of each support from its start to its end [N]"""
-    start_moment: float
-    """Moment of the beam just inside [N*mm], sagging positive; 0 where it is pinned"""
-    end_moment: float
+    wheels: tuple[float, ...] = ()
+    """Where its wheels stand, where it moves [mm]"""
 
 
 @dataclass(frozen=True, slots=True)
@@ -279,7 +270,7 @@ def sheet_maker(
             section_x=section_x,
             checks=checks,
             diagrams=_diagrams(batch, row, rating),
-            reactions=_reactions(arisen, subject, row),
+            reactions=tuple(reactions_of(arisen, _acting(arisen, subject), subject, row)),
             bar_yield=subject.bar_yield,
             stirrup_yield=subject.stirrup_yield,
         )
@@ -305,11 +296,20 @@ def _case_shares(
     return tuple(
         CaseShare(
             case.name, case.nature, float(shares.factor[k, row]), float(shares.moment[k, row]),
-            float(shares.shear[k, row]),
-            *_by_spans(shares.acting[k][:, row], arisen.places, subject),
+            float(shares.shear[k, row]), *_acts(arisen, shares, subject, k, row),
         )
         for k, case in _acting(arisen, subject)
     )  # fmt: skip
+
+
+def _acts(
+    arisen: Arising, shares: Shares, subject: Subject, case: int, row: int
+) -> tuple[int, tuple[int, ...], tuple[int, ...], tuple[float, ...]]:
+    """On which spans a case acts, or where its wheels stand."""
+    wheels = shares.wheels[case][row] if case in shares.wheels else ()
+    if wheels:
+        return 0, (), (), wheels
+    return *_by_spans(shares.acting[case][:, row], arisen.places, subject), ()
 
 
 def _by_spans(
@@ -322,27 +322,6 @@ def _by_spans(
     pressing, lifting = (np.flatnonzero(part) for part in (acting[:places], acting[places:]))
     spans = subject.continuity.spans if subject.continuity else 1
     return spans, tuple(pressing.tolist()), tuple(lifting.tolist())
-
-
-def _reactions(arisen: Arising, subject: Subject, row: int) -> tuple[CaseReaction, ...]:
-    spans = np.flatnonzero(arisen.beam_of == row)
-    return tuple(
-        CaseReaction(
-            case.name,
-            tuple(_at_supports(arisen.reactions[k, spans])),
-            float(arisen.end_moments[k, spans[0], 0]),
-            float(arisen.end_moments[k, spans[-1], 1]),
-        )
-        for k, case in _acting(arisen, subject)
-    )
-
-
-def _at_supports(of_spans: Floats) -> list[float]:
-    """The forces of the supports, of which an inner one serves two spans (S, 2)."""
-    forces = np.zeros(len(of_spans) + 1)
-    forces[:-1] += of_spans[:, 0]
-    forces[1:] += of_spans[:, 1]
-    return forces.tolist()
 
 
 def _self_weight(arisen: Arising, subject: Subject, row: int) -> Iterator[Load]:

@@ -24,6 +24,7 @@ from ifccheck.brief.model import (
     TakenCase,
 )
 from ifccheck.brief.places import did_you_mean, shown
+from ifccheck.brief.train_entries import check_own_cases, train_entries
 
 DEFAULT_SOURCES: tuple[SourceName, ...] = ("schedule", "bars", "sections", "properties")
 RESERVED = (SELF, *get_args(Nature))
@@ -46,6 +47,7 @@ def to_brief(table: schema.BriefTable, path: Path, source: Source) -> Brief:
         cases=cases,
         loads=tuple(load_entry(i, t, cases) for i, t in enumerate(table.loads)),
         floors=tuple(floor_entry(i, t, cases) for i, t in enumerate(table.floors)),
+        trains=train_entries(table.trains, cases),
         supports=tuple(support_entry(i, t) for i, t in enumerate(table.supports)),
         beams=tuple(beam_entry(i, t) for i, t in enumerate(table.beams)),
         materials=tuple(material_entry(i, t) for i, t in enumerate(table.materials)),
@@ -56,6 +58,7 @@ def to_brief(table: schema.BriefTable, path: Path, source: Source) -> Brief:
         frame=_frame(table),
     )
     _check_slab_bars(brief)
+    check_own_cases(brief)
     return brief
 
 

@@ -23,6 +23,7 @@ def load_brief(path: Path) -> Brief:
     from ifccheck.brief.convert import to_brief
     from ifccheck.brief.load_table import read_load_table
     from ifccheck.brief.schema import BriefTable, known_keys
+    from ifccheck.brief.train_entries import check_rows
 
     content = read_bytes(path, path.name)
     text = decoded(content, path.name).replace("\r\n", "\n")
@@ -37,6 +38,7 @@ def load_brief(path: Path) -> Brief:
     except FaultError as fault:
         raise source.error(fault.path, fault.text) from None
     rows = tuple(row for table in brief.load_tables for row in read_load_table(table, brief.cases))
+    check_rows(brief, rows)
     return _with_digest(replace(brief, loads=(*brief.loads, *rows)), content)
 
 

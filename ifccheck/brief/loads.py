@@ -127,10 +127,15 @@ def _place(
     brief: Brief, entry: LoadEntry, beam: Beam, key: str, position: Position | None
 ) -> float:
     assert position is not None  # the brief gives every point load and moment its place
+    return place_on(brief.where(entry, key), beam, position)
+
+
+def place_on(told_at: str, beam: Beam, position: Position) -> float:
+    """x of a place on a beam [mm]; raises BriefError where that lies beyond its end."""
     x = position.on(beam.length)
     if not -TOLERANCE <= x <= beam.length + TOLERANCE:
         raise BriefError(
-            f"{brief.where(entry, key)}: {position.text} lies beyond the end of beam"
+            f"{told_at}: {position.text} lies beyond the end of beam"
             f" {beam.mark}, which is {beam.length / 1000.0:.3f} m long"
         )
     return min(max(x, 0.0), beam.length)

@@ -16,6 +16,7 @@ from ifccheck.beam import (
     SourceName,
     StirrupGroup,
     SupportKind,
+    Travel,
 )
 
 ReinforcementField = Literal[
@@ -122,6 +123,22 @@ class LoadEntry:
 
 
 @dataclass(frozen=True, slots=True)
+class TrainEntry:
+    """One entry of ``[[trains]]``."""
+
+    place: str
+    selection: Selection
+    optional: bool
+    case: str
+    travel: Travel
+    start: Position | None
+    """Where the way begins; None for the whole beam or line"""
+    end: Position | None
+    text: str
+    """ "train of 2 wheels, 85 kN + 85 kN at 1.8 m" """
+
+
+@dataclass(frozen=True, slots=True)
 class SupportEntry:
     """One entry of ``[[supports]]``; None for what it does not speak of."""
 
@@ -188,7 +205,7 @@ class FloorEntry:
     """Whether walls under slabs carry; None where the model tells it of each"""
 
 
-Entry = LoadEntry | SupportEntry | BeamEntry | MaterialEntry
+Entry = LoadEntry | TrainEntry | SupportEntry | BeamEntry | MaterialEntry
 """What has a selection: ``place``, ``selection`` and ``optional``."""
 
 
@@ -299,6 +316,7 @@ class Brief:
     """As declared, without ``self``."""
     loads: tuple[LoadEntry, ...] = ()
     floors: tuple[FloorEntry, ...] = ()
+    trains: tuple[TrainEntry, ...] = ()
     supports: tuple[SupportEntry, ...] = ()
     beams: tuple[BeamEntry, ...] = ()
     materials: tuple[MaterialEntry, ...] = ()
@@ -321,6 +339,7 @@ class Brief:
     def entries(self) -> Iterator[Entry]:
         """Every entry with a selection, in the order of the brief's tables."""
         yield from self.loads
+        yield from self.trains
         yield from self.supports
         yield from self.beams
         yield from self.materials

@@ -78,6 +78,22 @@ def _plain_factor(value: object) -> float:
     return float(value)
 
 
+def _dynamic(value: object) -> float:
+    """A factor on wheels that move."""
+    if isinstance(value, bool) or not isinstance(value, int | float):
+        raise ValueError("must be a number, 1 where the wheels have their dynamic effect in them")
+    if not 1.0 <= value <= 3.0:  # also where value is nan
+        raise ValueError(f"is {value}: a factor from 1 to 3 is needed")
+    return float(value)
+
+
+def _above_zero(value: object, kind: Kind) -> Written:
+    written = read_written(value, kind)
+    if not written.value > 0.0:
+        raise ValueError(f"'{written.text}' is not above zero")
+    return written
+
+
 def _slab_flange(value: object) -> SlabFlange:
     """Which slab counts as a flange: none, what is level with the beam, also what is on top."""
     if value == "on top":
@@ -108,6 +124,9 @@ Name = Annotated[
     str, StringConstraints(min_length=1, max_length=80, pattern=r"^[^\x00-\x1f\x7f]*$")
 ]
 Length = Annotated[Written, _written("length")]
+WheelForce = Annotated[Written, PlainValidator(lambda value: _above_zero(value, "force"))]
+Gap = Annotated[Written, PlainValidator(lambda value: _above_zero(value, "length"))]
+MOST_WHEELS = 40
 Place = Annotated[Position, PlainValidator(read_position)]
 Factor = Annotated[tuple[float, float | None], PlainValidator(_factor)]
 
@@ -232,6 +251,28 @@ class LoadTable(SelectingTable):
     eccentricity: Length | None = None
 
 
+class SecondTrainTable(Table):
+    """``[trains.second]``"""
+
+    wheels: Annotated[list[WheelForce], Field(min_length=1, max_length=MOST_WHEELS)]
+    spacing: list[Gap] = Field(default_factory=list)
+    approach: Length
+
+
+class TrainTable(SelectingTable):
+    """``[[trains]]``"""
+
+    case: Name
+    wheels: Annotated[list[WheelForce], Field(min_length=1, max_length=MOST_WHEELS)]
+    spacing: list[Gap] = Field(default_factory=list)
+    dynamic: Annotated[float, PlainValidator(_dynamic)]
+    start: Place | None = Field(default=None, alias="from")
+    end: Place | None = Field(default=None, alias="to")
+    stops: bool = False
+    turned: bool = True
+    second: SecondTrainTable | None = None
+
+
 class FloorTable(Table):
     """``[[floors]]``"""
 
@@ -302,6 +343,7 @@ class BriefTable(Table):
     reinforcement: ReinforcementTable = Field(default_factory=ReinforcementTable)
     cases: dict[Name, CaseTable] = Field(default_factory=dict)
     loads: list[LoadTable] = Field(default_factory=list)
+    trains: list[TrainTable] = Field(default_factory=list)
     load_tables: list[LoadFileTable] = Field(default_factory=list)
     floors: list[FloorTable] = Field(default_factory=list)
     supports: list[SupportTable] = Field(default_factory=list)
@@ -317,6 +359,7 @@ _TABLES: dict[str, type[Table]] = {
     "reinforcement": ReinforcementTable,
     "cases": CaseTable,
     "loads": LoadTable,
+    "trains": TrainTable,
     "load_tables": LoadFileTable,
     "floors": FloorTable,
     "supports": SupportTable,
@@ -330,7 +373,9 @@ def known_keys(path: tuple[str | int, ...]) -> list[str]:
     """Return the keys that the table at a path may hold."""
     if not path:
         return list(BriefTable.model_fields)
-    table = (
-        PropertiesTable if path[:2] == ("reinforcement", "properties") else _TABLES[str(path[0])]
-    )
+    table = _TABLES[str(path[0])]
+    if path[:2] == ("reinforcement", "properties"):
+        table = PropertiesTable
+    elif path[0] == "trains" and "second" in path:
+        table = SecondTrainTable
     return [field.alias or name for name, field in table.model_fields.items()]

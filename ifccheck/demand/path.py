@@ -21,9 +21,11 @@ from ifccheck.analysis.statics import Solved, solve
 from ifccheck.analysis.stiffness import with_varying_stiffness
 from ifccheck.beam import Beam, Case, Load, Reason
 from ifccheck.demand.rows import Rows, curvature_on, line_table, loads_on, nodes_of, rows_of
+from ifccheck.demand.trains import train_forces
 from ifccheck.frame.beam_lines import BeamLine, Node
 from ifccheck.framed import Balance
 from ifccheck.mechanics.arrays import Floats, Ints
+from ifccheck.rating.runways import Runway
 from ifccheck.rating.subject import Continuity
 from ifccheck.units import show
 
@@ -49,6 +51,10 @@ class LoadPath:
     """Beams that wait for each other, and are not solved"""
     balance: list[Balance] = field(default_factory=list)
 
+    def passed_on(self) -> Iterator[Load]:
+        """All reactions that beams receive."""
+        return (load for own in self.loads.values() for load in own)
+
 
 class _Given(NamedTuple):
     """What all rounds work on."""
@@ -58,6 +64,7 @@ class _Given(NamedTuple):
     unit_weights: Mapping[str, float]
     cases: Sequence[Case]
     line_of: Mapping[str, int]
+    runways: Mapping[str, Runway]
 
 
 def load_path(
@@ -66,6 +73,7 @@ def load_path(
     loads: Mapping[str, Sequence[Load]],
     unit_weights: Mapping[str, float],
     cases: Sequence[Case],
+    runways: Mapping[str, Runway],
 ) -> LoadPath:
     """Solve all lines and pass their reactions on.
 
@@ -81,9 +89,11 @@ def load_path(
         For self weight, of every beam [N/mm3].
     cases
         All cases, ``self`` among them.
+    runways
+        Lines that trains run along, by the key of each of their beams.
     """
     line_of = {each.key: number for number, line in enumerate(lines) for each in line.beams}
-    given = _Given(beams, loads, unit_weights, cases, line_of)
+    given = _Given(beams, loads, unit_weights, cases, line_of, runways)
     path, solved = LoadPath(), set[int]()
     for some in _rounds(lines, line_of):
         solved |= set(some)
@@ -206,9 +216,16 @@ def _pass_on(rows: Rows, forces: Floats, parts: Parts, given: _Given, path: Load
             path.resting[carrier].update(same)
             x = _place_on(beam, of_node.seats[0].x, given.beams[carrier])
             least = _NOTHING * float(whole[node])
-            for case, force, apart in _forces(forces[:, node], parts, given.cases):
-                if abs(force) > least:
-                    path.loads[carrier].append(_reaction(beam, carrier, case, force, x, apart))
+            passed = [
+                each
+                for each in _forces(forces[:, node], parts, given.cases)
+                if abs(each[1]) > least
+            ]
+            if beam.key in given.runways:
+                passed += train_forces(given.runways[beam.key], place)
+            path.loads[carrier] += [
+                _reaction(beam, carrier, case, force, x, apart) for case, force, apart in passed
+            ]
 
 
 def _forces(

@@ -88,7 +88,7 @@ def loads_on(
     cases: Sequence[Case],
 ) -> tuple[LoadTable, Parts]:
     """All loads on some lines, self weight among them, by the parts of their cases."""
-    own = [load for key in rows.keys for load in loads.get(key, ())]
+    own = [load for key in rows.keys for load in loads.get(key, ()) if load.travel is None]
     row_of_case = {case.name: row for row, case in enumerate(cases)}
     row_of_beam = {key: row for row, key in enumerate(rows.keys)}
     runs, _ = run_table([beams[key].runs for key in rows.keys], [False] * len(rows.keys))

@@ -234,7 +234,7 @@ def _near_change(one: Measured, changes: Sequence[float]) -> Iterator[str]:
 
 
 def _near_load(one: Measured, loads: Sequence[Load]) -> Iterator[str]:
-    near = {load.origin for load in loads if _is_concentrated_beside(one, load)}
+    near = {load.origin for load in loads if load.travel or _is_concentrated_beside(one, load)}
     if near:
         yield f"a concentrated load stands within half a depth of it ({', '.join(sorted(near))})"
 

@@ -83,7 +83,7 @@ def share_rows(shares: Sequence[CaseShare]) -> list[ShareRow]:
 
 def _share_row(share: CaseShare) -> ShareRow:
     return ShareRow(
-        case=share.case,
+        case=share.case + _standing(share.wheels),
         nature=share.nature,
         factor="–" if math.isnan(share.factor) else f"{share.factor:.4g}",
         moment=_moment(share.moment),
@@ -92,6 +92,14 @@ def _share_row(share: CaseShare) -> ShareRow:
         factored_shear=_force(_factored(share.factor, share.shear)),
         acting=acting_words(share),
     )
+
+
+def _standing(wheels: Sequence[float]) -> str:
+    """Where the wheels of a train stand."""
+    if not wheels:
+        return ""
+    places = ", ".join(f"{x / 1000.0:.2f}" for x in wheels)
+    return f", wheel{'s' if len(wheels) > 1 else ''} at x = {places} m"
 
 
 def _factored(factor: float, effect: float) -> float:

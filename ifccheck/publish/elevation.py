@@ -379,7 +379,8 @@ def _band_name(band: Sequence[Load], frame: Frame, base: float, away: float) -> 
 def _single_load(
     load: Load, words: str, frame: Frame, foot: float, base: float, away: float, row: int
 ) -> str:
-    x, tip, tail = frame.x(load.start), foot + away * 1.5, base + away * (ARROW + 11.0 * row)
+    place = (load.start + load.end) / 2.0 if load.kind == "train" else load.start
+    x, tip, tail = frame.x(place), foot + away * 1.5, base + away * (ARROW + 11.0 * row)
     room = len(words) * LETTER_WIDTH / 2.0
     middle = min(max(x, LEFT / 4.0 + room), WIDTH - 4.0 - room)
     named = label(middle, tail + away * 5.0 + 1.5, words, "load-name halo")
@@ -389,7 +390,8 @@ def _single_load(
     downward = load.values[0] >= 0.0
     head_at, point = (max(tip, tail), 1.0) if downward else (min(tip, tail), -1.0)
     head = closed_path([(x, head_at), (x - 3, head_at - 7 * point), (x + 3, head_at - 7 * point)])
-    return path(segment(x, tail, x, tip), "force") + path(head, "head") + named
+    way = segment(frame.x(load.start), tip, frame.x(load.end), tip) if load.kind == "train" else ""
+    return path(way + segment(x, tail, x, tip), "force") + path(head, "head") + named
 
 
 def _turning(x: float, y: float, moment: float) -> str:

@@ -248,7 +248,7 @@ class _Load:
 
 
 def _load(load: Load) -> _Load:
-    end = metres(load.end) if load.kind == "line" else ""
+    end = metres(load.end) if load.kind in ("line", "train") else ""
     face = "hung from the soffit" if load.face == "bottom" else "top"
     return _Load(load.case, load_words(load), metres(load.start), end, face, load.origin)
 

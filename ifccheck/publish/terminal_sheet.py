@@ -104,7 +104,7 @@ def _tables(sheet: Sheet, to: Terminal) -> Iterator[Table]:
 
 
 def _load(load: Load) -> Sequence[str]:
-    end = metres(load.end) if load.kind == "line" else ""
+    end = metres(load.end) if load.kind in ("line", "train") else ""
     face = "soffit" if load.face == "bottom" else "top"
     return load.case, load_words(load), metres(load.start), end, face, load.origin
 

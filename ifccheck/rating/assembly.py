@@ -45,6 +45,7 @@ from ifccheck.rating.runs import (
     run_table,
     sections_at,
 )
+from ifccheck.rating.runways import Runways, runways_of
 from ifccheck.rating.stiffness import curvature_of
 from ifccheck.rating.subject import Subject
 from ifccheck.rating.weights import self_weight
@@ -108,6 +109,8 @@ class Frame:
     """Each end stands on its support, which compresses it (S, 2)"""
     natures: tuple[frozenset[Nature], ...]
     """Of the loads on each beam, its own weight included (B)"""
+    runways: Runways | None = None
+    """Where trains run; None where none does"""
 
 
 def frame_of(subjects: Sequence[Subject], cases: Sequence[Case]) -> Frame:
@@ -123,7 +126,7 @@ def frame_of(subjects: Sequence[Subject], cases: Sequence[Case]) -> Frame:
     spans = span_table([one.span for one in each])
     row_of_case = {case.name: row for row, case in enumerate(cases)}
     row_of_beam = {subject.beam.key: row for row, subject in enumerate(subjects)}
-    stated = [load for subject in subjects for load in subject.loads]
+    stated = [load for subject in subjects for load in subject.loads if load.travel is None]
     apart = [load for load in stated if load.apart]
     if apart:
         stated = [load for load in stated if not load.apart]
@@ -158,6 +161,7 @@ def frame_of(subjects: Sequence[Subject], cases: Sequence[Case]) -> Frame:
         side_loaded=np.array([subject.side_loaded for subject in subjects])[beam_of],
         direct=np.array([one.direct for one in each]),
         natures=_natures(subjects, cases),
+        runways=runways_of([subject.runway for subject in subjects], beam_of, parts, row_of_case),
     )
 
 

@@ -125,17 +125,19 @@ def _kept(effects: Effects, acting: Demands) -> Bools:
     Two arrangements of a combination in which the same cases have their greater factors are one;
     so is one in two combinations in which every case has the same factor, where the later one's
     peaks are no greater, for a looser bound never makes a utilisation less. Where a case is idle
-    the numbers are compared, and where another station's shear may be checked that one, too.
+    or moves the numbers are compared, and where another station's shear may be checked that one,
+    too.
     """
     demands = acting.total, *acting.shares
     kept = np.ones(acting.total.moment.shape, dtype=np.bool_)
     combinations, arrangements = acting.total.moment.shape[:-1]
-    numbers = _numbers_at(demands, effects.idle)
+    compared = _compared(effects)
+    numbers = _numbers_at(demands, compared)
     telling = effects.greater != effects.lesser
     for later, earlier in _pairs(arrangements):
         unlike = effects.full[later] != effects.full[earlier]
         apart = np.array([unlike[cases].any(axis=0) for cases in telling])
-        apart[:, effects.idle] = _differ(numbers[:, :, later], numbers[:, :, earlier])
+        apart[:, compared] = _differ(numbers[:, :, later], numbers[:, :, earlier])
         apart |= apart.take(acting.critical, axis=1, mode="clip")
         kept[:, later] &= apart
     first = starts(effects.cases.beam)
@@ -144,10 +146,20 @@ def _kept(effects: Effects, acting: Demands) -> Bools:
     for later, earlier in _pairs(combinations):
         if bounded[later, earlier].any():
             apart = _unlike_factors(effects, later, earlier)
-            apart[:, effects.idle] = _differ(numbers[:, later], numbers[:, earlier])
+            apart[:, compared] = _differ(numbers[:, later], numbers[:, earlier])
             apart |= apart.take(acting.critical, axis=1, mode="clip")
             kept[later] &= apart | ~bounded[later, earlier][span]
     return kept
+
+
+def _compared(effects: Effects) -> Ints:
+    """Stations at which like factors do not mean like effects: where a case is idle, and where a
+    train may stand elsewhere in each arrangement."""
+    moving = effects.cases.moving
+    if moving is None:
+        return effects.idle
+    acts = ((moving.moment != 0.0) | (moving.shear != 0.0)).any(axis=(0, 1))
+    return np.union1d(effects.idle, np.flatnonzero(acts))
 
 
 def _pairs(count: int) -> Iterator[tuple[int, int]]:

@@ -12,6 +12,7 @@ from ifccheck.analysis.effects import Demands, Effects, combine, demands
 from ifccheck.analysis.loads import LINE
 from ifccheck.analysis.spans import FREE, by_spans
 from ifccheck.analysis.statics import (
+    CaseEffects,
     Solved,
     effects_at,
     join_effects,
@@ -109,6 +110,14 @@ def solved_frame(frame: Frame) -> Solved:
     return solved
 
 
+def effects_on(frame: Frame, solved: Solved, stations: StationTable) -> CaseEffects:
+    """What each part of each case does at stations with the rows of the spans, trains included."""
+    found = effects_at(solved, stations, deflections=False)
+    if frame.runways is None:
+        return found
+    return replace(found, moving=frame.runways.effects(stations))
+
+
 def _critical_sections(frame: Frame, standard: Standard) -> Floats:
     """x of the critical section for shear at either end of each span [mm] (S, 2).
 
@@ -141,6 +150,7 @@ def _concentrated(frame: Frame, critical: Floats) -> Bools:
     A line load is one where it is shorter than twice the distance between them, or than a
     quarter of the distance between the faces: it comes down as a strut of its own. The weight of
     the beam itself, which is cut at every run, is none; that of a beam which rests on it is.
+    A wheel may stand anywhere.
     """
     found = np.zeros(critical.shape, dtype=np.bool_)
     loads, faces = frame.loads, frame.faces
@@ -153,6 +163,8 @@ def _concentrated(frame: Frame, critical: Floats) -> Bools:
         lump = (loads.kind != LINE) | (loads.end - loads.start < short[loads.beam, end])
         lump &= (loads.case != frame.self_case) | (loads.kind != LINE)
         found[loads.beam[near & lump], end] = True
+    if frame.runways is not None:
+        found[frame.runways.passed] = True
     return found
 
 
@@ -174,10 +186,12 @@ def _effects(
     with the rows of the spans."""
     along = _on_spans(join_places(*_fixed_places(frame), more), frame)
     fixed = join_places(*_places_of_spans(frame, critical), along)
+    if frame.runways is not None:
+        fixed = join_places(fixed, frame.runways.places(frame.spans))
     stations = within(make_stations(frame.spans, frame.loads, fixed), frame.checked)
-    found = effects_at(solved, stations, deflections=False)
+    found = effects_on(frame, solved, stations)
     beam, x = turning_places(found, factors).places()
-    there = effects_at(solved, StationTable(beam, x, np.zeros_like(beam)), deflections=False)
+    there = effects_on(frame, solved, StationTable(beam, x, np.zeros_like(beam)))
     stations, rows = insert_stations(stations, beam, x)
     return combine(join_effects(found, there, rows), factors), stations
 

@@ -23,6 +23,7 @@ from ifccheck.beam import (
     Stirrups,
 )
 from ifccheck.mechanics.arrays import Floats
+from ifccheck.rating.runways import Runway
 
 
 class Continuity(NamedTuple):
@@ -98,6 +99,8 @@ class Subject:
     """Where the brief says that they are anchored; empty where they do not count"""
     continuity: Continuity | None = None
     """None where each of its spans stands alone"""
+    runway: Runway | None = None
+    """The line that trains run along; None where none runs on its line"""
     body: RatedBody | None = None
     """What is rated of the beam where that is not its body alone; None where it is"""
 

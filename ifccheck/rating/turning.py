@@ -13,14 +13,13 @@ from typing import TypeVar
 import numpy as np
 
 from ifccheck.analysis.effects import combine, demands, scaled_case
-from ifccheck.analysis.statics import effects_at
 from ifccheck.analysis.stations import StationTable, rows_before
 from ifccheck.analysis.turns import Turns, turning_places
 from ifccheck.mechanics.arrays import Bools, Demand, Floats, Ints
 from ifccheck.rating.assembly import make_station_arrays
 from ifccheck.rating.elements import distinct_elements
 from ifccheck.rating.factors import Factors, rating_factors
-from ifccheck.rating.loaded import Loaded
+from ifccheck.rating.loaded import Loaded, effects_on
 from ifccheck.rating.utilisation import Found, evaluate
 from ifccheck.standards import Options, Standard
 
@@ -104,7 +103,7 @@ def _factors_at(
     """The factors, lowered to what holds at some more places."""
     under, side = growth.under, np.zeros_like(span)
     frame, stations = under.frame, StationTable(span, x, side)
-    cases = effects_at(under.solved, stations, deflections=False)
+    cases = effects_on(frame, under.solved, stations)
     effects = combine(cases, under.factors)
     acting = demands(effects, np.arange(x.size), (growth.case,), parts=frame.parts.case)
     arrays = make_station_arrays(frame, span, x, side)

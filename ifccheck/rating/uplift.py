@@ -57,6 +57,9 @@ def uplift_of(effects: Effects, frame: Frame, rated: Mapping[str, int]) -> Uplif
     parts = frame.parts
     beam, x, lifted_off, reactions = _supports(effects.cases.reactions, frame)
     pressing, lifting = np.maximum(reactions, 0.0), np.maximum(-reactions, 0.0)
+    if frame.runways is not None:
+        least = _of_wheels(frame.runways.reactions()[1], frame)
+        pressing, lifting = pressing + np.maximum(least, 0.0), lifting + np.maximum(-least, 0.0)
     up, down = effects.greater @ lifting, effects.lesser @ pressing
     net = np.where(up - down > ROUNDING * (up + down), up - down, 0.0)
     beyond = {}
@@ -93,6 +96,15 @@ def _supports(reactions: Floats, frame: Frame) -> tuple[Ints, Floats, Bools, Flo
         forces[:, first] += frame.beside[:, :, 0]
         forces[:, last] += frame.beside[:, :, 1]
     return beam, x, (kind == PINNED) | (kind == CONTINUOUS), forces
+
+
+def _of_wheels(least: Floats, frame: Frame) -> Floats:
+    """Least reactions of whole supports under trains, by the ends of spans (P, S, 2), by supports
+    and tips of beams (P, J)."""
+    near = np.arange(frame.beam_of.size) + frame.beam_of
+    forces = np.zeros((len(least), int(near[-1]) + 2))
+    forces[:, near], forces[:, near + 1] = least[:, :, 0], least[:, :, 1]
+    return forces
 
 
 def uplift_remarks(

@@ -205,7 +205,7 @@ def _safe_load(
 
 def _single(loads: Sequence[Load]) -> tuple[str, float]:
     """Kind and value of a case that is one point or one even line on this beam."""
-    if len(loads) != 1 or loads[0].kind == "moment" or loads[0].values[0] == 0.0:
+    if len(loads) != 1 or loads[0].kind in ("moment", "train") or loads[0].values[0] == 0.0:
         return "", math.nan
     load = loads[0]
     if load.kind == "line" and load.values[0] != load.values[1]:
@@ -224,6 +224,8 @@ def _safe_load_text(factor: float, kind: str, value: float, loads: Sequence[Load
     if kind == "line":
         return show(factor * value, "line_load", rounding="down")
     text = f"{show_ratio(factor)} x assigned"
+    if len(loads) == 1 and loads[0].kind == "train":
+        return f"{math.floor(factor * 100.0) / 100.0:.2f} x {loads[0].text}"
     if len(loads) != 1 or loads[0].kind != "line":
         return text
     return f"{text}: {' to '.join(_toward_zero(factor * end) for end in loads[0].values)}"

@@ -11,6 +11,7 @@ from ifccheck.brief.statements import BeamStatement, MaterialStatement
 from ifccheck.frame.bar_ends import Surroundings
 from ifccheck.frame.flanges import Slabs
 from ifccheck.frame.openings import Net
+from ifccheck.rating.runways import Runway
 from ifccheck.rating.shape import Stance
 from ifccheck.standards import Standard
 from ifccheck.subjects.floors import NO_FLOOR_LOADS, FloorLoads
@@ -88,3 +89,5 @@ class Sources:
     """What slabs bring to beams"""
     framing: Framing | None = None
     """None where the brief states every support"""
+    runways: Mapping[str, Runway] = field(default_factory=dict)
+    """Lines that trains run along, by the key of each of their beams"""

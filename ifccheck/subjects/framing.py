@@ -23,6 +23,7 @@ from ifccheck.frame.joints import RunsThrough, by_bars
 from ifccheck.frame.lines import Lines, find_lines
 from ifccheck.frame.seats import Seat
 from ifccheck.frame.spans import Standing
+from ifccheck.rating.runways import Runway
 from ifccheck.units import clipped
 
 ONE_OF_SEVERAL = Reason(
@@ -172,9 +173,10 @@ def with_reactions(
     loads: Mapping[str, Sequence[Load]],
     unit_weights: Mapping[str, float],
     brief: Brief,
+    runways: Mapping[str, Runway],
 ) -> Framing:
     """The same with what beams give each other."""
-    path = load_path(framing.lines.lines, beams, loads, unit_weights, cases_of(brief))
+    path = load_path(framing.lines.lines, beams, loads, unit_weights, cases_of(brief), runways)
     for key, reason in path.in_a_ring.items():
         framing.standing.pop(key, None)
         framing.unknown[key] = reason

@@ -59,6 +59,7 @@ from ifccheck.subjects.framing import (
 from ifccheck.subjects.slab_steel import SlabSteel, slab_steel_of
 from ifccheck.subjects.stated import stated_texts
 from ifccheck.subjects.steel import Steel, steel_of
+from ifccheck.subjects.trains import fixed_cranes, judge_trains, trains_of
 
 Row = TypeVar("Row", Load, Remark)
 
@@ -95,15 +96,17 @@ def gather(model: Model, brief: Brief, matches: Matches, standard: Standard) -> 
     standing = framing.standing if framing else _standing_alone(beams, sources)
     spans = {key: each.reach for key, each in standing.items()}
     floors = floor_loads(model, brief, matches, standing, brief.basis.concrete_unit_weight)
-    sources = replace(sources, floors=floors)
+    trains = trains_of(brief, matches, beams, standing, framing)
+    sources = replace(sources, floors=floors, runways=trains.runways)
     loads = (
         *floors.loads,
         *loads_on_beams(brief, matches, beams, spans, sources.contacts),
         *taken_loads(brief, model.loads, beams, spans),
+        *trains.loads,
     )
     if framing:
         framing = _with_reactions(framing, beams, _by_beam(loads), sources)
-        loads = (*loads, *(load for own in framing.path.loads.values() for load in own))
+        loads = (*loads, *framing.path.passed_on())
         sources = replace(sources, framing=framing)
     of_beam = _by_beam(loads)
     found = [
@@ -132,7 +135,7 @@ def _sources(
         slabs=Slabs(model.beams, model.slabs, model.members),
         around=Surroundings(model.members, _not_concrete(model)),
         unit_weight=Given(brief.basis.concrete_unit_weight, "brief, basis.concrete_unit_weight"),
-        crane_cases={case.name for case in brief.cases if case.nature == "crane"},
+        crane_cases=fixed_cranes(brief),
         stances=stances(model.beams),
         ignored=ignored_contacts(brief, matches, contacts),
         upward=_upward(brief, model),
@@ -192,7 +195,7 @@ def _with_reactions(
         key: concrete_of(beams[key], sources, Findings(key)).unit_weight.value
         for key in framing.standing
     }
-    framing = with_reactions(framing, beams, loads, weights, sources.brief)
+    framing = with_reactions(framing, beams, loads, weights, sources.brief, sources.runways)
     known = replace(sources, framing=framing)
     received = framing.path.loads
     own = {
@@ -244,6 +247,7 @@ def _one(
     _judge_standing(beam, sources, statement, standing, findings)
     steel = steel_of(beam, sources, findings) if beam.runs else None
     judge_loads(beam, sources, statement, standing, loads, findings)
+    judge_trains(beam.key, sources, loads, findings)
     net, more = Net(), SlabSteel()
     if standing and steel:
         slab = counted(beam, _asked(beam, sources, statement, concrete), loads)
@@ -275,6 +279,7 @@ def _one(
         slab_bars=more.listed,
         slab_bars_from=more.source,
         body=net.body,
+        runway=sources.runways.get(beam.key),
         continuity=sources.framing.path.continuity.get(beam.key) if sources.framing else None,
     )
 
