@@ -303,9 +303,9 @@ def write_columns(works: PrintWorks) -> None:
 def write_girders(works: PrintWorks) -> None:
     """Girders on line B: physical bars, fixed at both ends by the brief."""
     length = BAY_X - COLUMN
-    supply = [((4, "25M"), (4, "25M"), 200.0), ((3, "25M"), (4, "25M"), 200.0),
-              ((4, "25M"), (4, "25M"), 520.0), ((4, "25M"), (3, "25M"), 200.0),
-              ((4, "25M"), (4, "25M"), 200.0)]  # fmt: skip
+    supply = [((4, "25M"), (6, "25M"), 160.0), ((3, "25M"), (4, "25M"), 200.0),
+              ((4, "25M"), (5, "25M"), 520.0), ((4, "25M"), (3, "25M"), 200.0),
+              ((4, "25M"), (6, "25M"), 160.0)]  # fmt: skip
     for i, (bottom, top, spacing) in enumerate(supply):
         mark = f"G-{101 + i}"
         place = Place(LEVEL_1, (i * BAY_X + COLUMN / 2, BAY_Y, -700.0))
