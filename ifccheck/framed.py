@@ -118,6 +118,8 @@ class Framed:
     """One for each storey and case"""
     left_out: tuple[str, ...] = ()
     """Keys of the beams of which loads and reactions are not in the balance"""
+    moving: tuple[str, ...] = ()
+    """Cases that are not in the balance because they move"""
 
     @property
     def all_lines(self) -> Iterator[FramedLine]:

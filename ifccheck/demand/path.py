@@ -21,7 +21,7 @@ from ifccheck.analysis.statics import Solved, solve
 from ifccheck.analysis.stiffness import with_varying_stiffness
 from ifccheck.beam import Beam, Case, Load, Reason
 from ifccheck.demand.rows import Rows, curvature_on, line_table, loads_on, nodes_of, rows_of
-from ifccheck.demand.trains import train_forces
+from ifccheck.demand.trains import moving_cases, train_forces
 from ifccheck.frame.beam_lines import BeamLine, Node
 from ifccheck.framed import Balance
 from ifccheck.mechanics.arrays import Floats, Ints
@@ -50,6 +50,8 @@ class LoadPath:
     in_a_ring: dict[str, Reason] = field(default_factory=dict)
     """Beams that wait for each other, and are not solved"""
     balance: list[Balance] = field(default_factory=list)
+    moving: tuple[str, ...] = ()
+    """Cases of trains, which the balance leaves out: what they give depends on where they stand"""
 
     def passed_on(self) -> Iterator[Load]:
         """All reactions that beams receive."""
@@ -94,7 +96,7 @@ def load_path(
     """
     line_of = {each.key: number for number, line in enumerate(lines) for each in line.beams}
     given = _Given(beams, loads, unit_weights, cases, line_of, runways)
-    path, solved = LoadPath(), set[int]()
+    path, solved = LoadPath(moving=tuple(sorted(moving_cases(runways)))), set[int]()
     for some in _rounds(lines, line_of):
         solved |= set(some)
         path.solved.extend([lines[number] for number in some])
@@ -279,7 +281,7 @@ def _balance(
     for key, storey in zip(rows.keys, of_beam, strict=True):
         for load in received.get(key, ()):
             taken[row_of_case[load.case], storey] += load.values[0]
-    held = parts.whole(forces)
+    held, moving = parts.whole(forces), moving_cases(given.runways)
     for line, place, node in nodes_of(rows):
         of_node = rows.lines[line].nodes[place]
         if of_node.seats:
@@ -287,6 +289,8 @@ def _balance(
             goes_to[:, storeys[given.beams[of_node.seats[0].beam].storey]] += held[:, node]
     for name, column in storeys.items():
         for row, case in enumerate(given.cases):
+            if case.name in moving:
+                continue
             into, out = float(taken[row, column]), float(passed[row, column])
             own = float(every[row, column]) - into
             yield Balance(name, case.name, own, into, out, float(ground[row, column]))

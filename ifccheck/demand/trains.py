@@ -92,6 +92,11 @@ def train_forces(runway: Runway, node: int) -> Iterator[tuple[str, float, bool]]
             yield case, least, True
 
 
+def moving_cases(runways: Mapping[str, Runway]) -> set[str]:
+    """Cases that trains on any line make."""
+    return {case for runway in runways.values() for case, _ in runway.trains}
+
+
 def scattered(
     received: Mapping[str, Sequence[Load]], runways: Mapping[str, Runway], cases: Iterable[str]
 ) -> dict[str, Reason]:

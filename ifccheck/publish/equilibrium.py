@@ -61,6 +61,11 @@ def _kn(force: float) -> str:
 
 def equilibrium_words(framed: Framed) -> str:
     """Return in one line whether loads and reactions balance, and where they do not."""
+    moving = f"; {', '.join(framed.moving)}, which moves, is not in it" if framed.moving else ""
+    return _balance_words(framed) + moving
+
+
+def _balance_words(framed: Framed) -> str:
     if wrong := list(_wrong(framed.balance)):
         return f"loads and reactions do not balance: {'; '.join(wrong)}"
     carried = [row for row in totals(framed.balance) if _acts(row)]

@@ -20,7 +20,7 @@ def framed(framing: Framing) -> Framed:
     shown = _framed(lines, framing.unknown, framing.beams)
     solved = {each.key for line in path.solved for each in line.beams}
     left_out = tuple(key for key in framing.beams if key not in solved)
-    return replace(shown, balance=_summed(path.balance), left_out=left_out)
+    return replace(shown, balance=_summed(path.balance), left_out=left_out, moving=path.moving)
 
 
 def framed_by_the_model(model: Model) -> Framed:
