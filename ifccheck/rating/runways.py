@@ -10,7 +10,9 @@ import numpy as np
 from ifccheck.analysis.arrangements import (
     ARRANGEMENTS,
     GREATEST_MOMENT,
+    GREATEST_SHEAR,
     LEAST_MOMENT,
+    LEAST_SHEAR,
     MovingEffects,
 )
 from ifccheck.analysis.line_table import LineTable
@@ -87,7 +89,12 @@ class Runways:
         return places(np.repeat(rows, part.size), x.ravel(), two_sided=False)
 
     def effects(self, stations: StationTable) -> MovingEffects:
-        """What moves, at stations with the rows of the spans of the batch (N)."""
+        """What moves, at stations with the rows of the spans of the batch (N).
+
+        With the extreme that an arrangement seeks goes the other effect where that is greatest in
+        size, wherever the trains then stand: what depends on moment and shear together may be worse
+        under a train between the two places than at either.
+        """
         part, size = self.part, stations.x.size
         shape = ARRANGEMENTS, part.size, size
         moment, shear = np.zeros((2, *shape))
@@ -102,6 +109,8 @@ class Runways:
             moment[at], shear[at], turned[at] = found.moment, found.shear, found.turned
             for train in (0, 1):
                 standing[train][at] = found.places[train]
+        bending, shearing = [GREATEST_MOMENT, LEAST_MOMENT], [GREATEST_SHEAR, LEAST_SHEAR]
+        moment[shearing], shear[bending] = _greater(*moment[bending]), _greater(*shear[shearing])
         return MovingEffects(part, moment, shear, standing, turned)
 
     def wheels(
@@ -144,6 +153,11 @@ class Runways:
         greatest[moving.case] = moving.moment[GREATEST_MOMENT].reshape(-1, self.spans, 2)
         least[moving.case] = moving.moment[LEAST_MOMENT].reshape(-1, self.spans, 2)
         return greatest, least
+
+
+def _greater(one: Floats, other: Floats) -> Floats:
+    """Whichever is greater in size."""
+    return np.where(np.abs(one) >= np.abs(other), one, other)
 
 
 def runways_of(
