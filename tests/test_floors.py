@@ -358,6 +358,13 @@ def test_a_recess_takes_nothing_out() -> None:
     assert only(building).openings == ()
 
 
+def test_an_outline_that_crosses_itself_is_no_slab_to_share_out() -> None:
+    building = Building()
+    bow = building.outline((0, 0), (4000, 2500), (4000, 0), (0, 2500))
+    made(building, building.extrusion(bow, 200.0, at=(0.0, 0.0, 3000.0)))
+    assert only(building).unread
+
+
 def faceted(building: Building, ring: Sequence[tuple[float, float]], top: float = 3200.0) -> Any:
     count = len(ring)
     corners = [(x, y, z) for z in (3000.0, top) for x, y in ring]

@@ -5,13 +5,14 @@ from __future__ import annotations
 import math
 import random
 from collections.abc import Sequence
+from itertools import pairwise
 
 import pytest
 from shapely import Point, Polygon, box, unary_union
 from shapely.affinity import rotate, scale
 
 from ifccheck.frame.panels import Carrier
-from ifccheck.frame.tributary import Share, Span, Ways, shares
+from ifccheck.frame.tributary import Share, Span, UnsharedError, Ways, shares
 from ifccheck.frame.widths import Width, widths_along, within
 
 Ring = tuple[tuple[float, float], ...]
@@ -288,3 +289,31 @@ def test_widths_within_two_places() -> None:
     assert within(widths, 0.0, 4000.0) == (
         Width(0.0, 3000.0, 1000.0, 4000.0), Width(3000.0, 4000.0, 100.0, 100.0),
     )  # fmt: skip
+
+
+@pytest.mark.parametrize("seed", range(60))
+def test_irregular_floors_never_lose_a_part(seed: int) -> None:
+    """Beams that are missing, out of line by 30 mm, or lie across; any angle; an opening."""
+    rng = random.Random(seed)
+    xs, ys = (0.0, 6000.0, 10000.0, 19000.0), (0.0, 4000.0, 6500.0)
+    lines = [(x0 + 150, y + rng.choice((0, 30)), x1 - 150, y) for y in ys
+             for x0, x1 in pairwise(xs) if rng.random() < 0.8]  # fmt: skip
+    lines += [(x, y0 + rng.choice((0, 300)), x, y1) for x in xs
+              for y0, y1 in pairwise(ys) if rng.random() < 0.8]  # fmt: skip
+    lines.append((rng.uniform(0, 19e3), 100.0, rng.uniform(0, 19e3), 6400.0))
+    floor = box(-800, -800, 19800, 7300)
+    hole = box(1000, 1000, 1900, 2200)
+    turn = rng.uniform(0.0, 360.0)
+    plans = [rotate(figure, turn, origin=(0, 0)) for figure in (floor, hole)]
+    rings = [tuple((x, y) for x, y in plan.exterior.coords[:-1]) for plan in plans]
+    ends = [rotate(Polygon([line[:2], line[2:], (-9e3, -9e3)]), turn, origin=(0, 0)).exterior.coords
+            for line in lines]  # fmt: skip
+    carriers = [Carrier(tuple(one[0]), tuple(one[1]), 150.0) for one in ends]
+    for span in (TWO_WAYS, Span(), Span("one way", (1.0, 0.0))):
+        try:
+            found = shares([rings[0]], [[rings[1]]], carriers, span)
+        except UnsharedError:
+            continue
+        total = plans[0].area - plans[1].area
+        laid = sum(share.figure.area for share in found)
+        assert total * (1.0 - 1e-6) <= laid <= total * 1.1

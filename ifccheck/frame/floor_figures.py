@@ -48,3 +48,11 @@ def distance_from(ring: Ring, place: Point) -> float:
     from shapely import Polygon
 
     return float(Polygon(ring).distance(Place(place)))
+
+
+def together(figures: Sequence[BaseGeometry]) -> BaseGeometry:
+    """Return figures that do not overlap as one, without joining those that touch."""
+    from shapely import MultiPolygon
+
+    parts = [part for figure in figures for part in getattr(figure, "geoms", [figure])]
+    return MultiPolygon([part for part in parts if part.geom_type == "Polygon" and part.area > 0.0])

@@ -16,7 +16,7 @@ from dataclasses import replace
 from typing import TYPE_CHECKING, Literal, NamedTuple
 
 from ifccheck.beam import Point, Ring
-from ifccheck.frame.floor_figures import floor_figure, shifted
+from ifccheck.frame.floor_figures import floor_figure, shifted, together
 from ifccheck.frame.panels import SLIVER, Carrier, Edge, Panel, panels_of
 
 if TYPE_CHECKING:
@@ -38,6 +38,16 @@ ROUNDING = 1e-10
 """Part of a floor that may be lost to rounding where panels meet"""
 TOUCHED = 1e-7
 """Part of a floor that lies in a panel which it only touches, by rounding"""
+
+
+LOST = 1e-6
+"""Part of a floor by which its parts may fall short of it"""
+TWICE = 0.1
+"""Part of a floor that may count twice, which loads beams more, where axes all but coincide"""
+
+
+class UnsharedError(ValueError):
+    """A floor that could not be shared out, and why."""
 
 
 class Share(NamedTuple):
@@ -82,17 +92,35 @@ def shares(
         With axes in plan; without any nothing is shared out.
     span
         How the floor spans.
+
+    Raises
+    ------
+    UnsharedError
+        Where the parts do not make up the floor, as its outline or the axes all but coincide.
     """
     origin = rings[0][0]
     figure = floor_figure(rings, openings, origin)
     if not carriers or figure.area <= SLIVER:
         return []
-    from shapely import Polygon, prepare, unary_union
+    from shapely import GEOSException
 
-    local = [_moved(each, origin) for each in carriers]
-    prepare(figure)
+    try:
+        found = _shared(figure, rings[0], [_moved(each, origin) for each in carriers], span)
+    except GEOSException as error:
+        raise UnsharedError("its panels cannot be told apart") from error
+    laid = sum(share.figure.area for share in found)
+    if not (1.0 - LOST) * figure.area <= laid <= (1.0 + TWICE) * figure.area:
+        raise UnsharedError(f"its parts make {laid / figure.area:.4f} of its area together")
+    return found
+
+
+def _shared(
+    figure: BaseGeometry, outline: Ring, local: Sequence[Carrier], span: Span
+) -> list[Share]:
+    from shapely import Polygon, unary_union
+
     found: dict[int, list[BaseGeometry]] = {}
-    outer = Polygon(shifted(rings[0], origin))
+    outer = Polygon(shifted(outline, outline[0]))
     for panel in panels_of(outer, local, lambda panel: _has_part(figure, panel)):
         for carrier, cell in _cells(panel, local, span):
             part = cell if figure.covers(cell) else figure.intersection(cell)
@@ -103,7 +131,7 @@ def shares(
         rest = figure.difference(unary_union([part for parts in found.values() for part in parts]))
         for carrier, part in _to_nearest(rest, local):
             found.setdefault(carrier, []).append(part)
-    return [Share(carrier, unary_union(parts)) for carrier, parts in sorted(found.items())]
+    return [Share(carrier, together(parts)) for carrier, parts in sorted(found.items())]
 
 
 def _has_part(figure: BaseGeometry, panel: Polygon) -> bool:

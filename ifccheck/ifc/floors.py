@@ -27,6 +27,7 @@ if TYPE_CHECKING:
     from ifccheck.ifc.context import Context
 
 NO_PLATE = "it is no level plate that can be read"
+CROSSES = "its outline crosses itself"
 NO_BODY = "it has no body of its own"
 OF_WALL = "Pset_WallCommon"
 THROUGH = 1.0
@@ -78,6 +79,8 @@ class FloorReader:
             *(Plate(drawn_rings(prism), *levels(prism)) for prism, _ in drawn),
             *(Plate(*each) for each in faceted if each),
         )
+        if not all(_is_plain(plate.rings) for plate in plates):
+            return FloorSlab(*named, unread=CROSSES)
         openings, notes = self._openings(entity, plates)
         if any(cut for _, cut in drawn):
             notes = ("what is cut off its body counts as there", *notes)
@@ -104,12 +107,15 @@ class FloorReader:
                 holes = [self._hole(placed) for placed in body_items(self._context, opening)]
             except (UnreadableError, *ILL_TYPED):
                 holes = []
-            if not holes or None in holes:
+            if not holes or not all(hole and _is_plain(hole.rings) for hole in holes):
                 notes.append(f"{label(opening)} in it cannot be read and is not taken out")
             found += [
                 hole.rings
                 for hole in holes
-                if hole and hole.bottom <= bottom + THROUGH and hole.top >= top - THROUGH
+                if hole
+                and _is_plain(hole.rings)
+                and hole.bottom <= bottom + THROUGH
+                and hole.top >= top - THROUGH
             ]
         return tuple(found), tuple(notes)
 
@@ -129,6 +135,14 @@ class FloorReader:
     def _bears(self, wall: int) -> bool:
         stated = self._context.properties.of(wall).get(OF_WALL, {}).get("LoadBearing")
         return stated is not None and stated.value is True
+
+
+def _is_plain(rings: tuple[Ring, ...]) -> bool:
+    """Whether no ring crosses itself or another."""
+    from shapely import Polygon
+
+    outer, *voids = rings
+    return bool(Polygon(outer, voids).is_valid)
 
 
 def _upright(prism: Prism) -> bool:

@@ -14,11 +14,13 @@ from ifccheck.frame.floor_carriers import Bearer, FloorCarriers, Under
 from ifccheck.frame.floor_figures import covered, distance_from, floor_figure
 from ifccheck.frame.panels import Carrier
 from ifccheck.frame.spans import Standing
-from ifccheck.frame.tributary import Share, Span, shares
+from ifccheck.frame.tributary import Share, Span, UnsharedError, shares
 from ifccheck.frame.widths import Width, widths_along, within
 from ifccheck.units import show
 
 STAGE = "floors"
+TOLD = 1e-3
+"""Part of a slab that counts on two beams above which a note tells of it"""
 NAMED = 5
 """Slabs or walls that a remark names"""
 GRAVITY = 9.80665e-9
@@ -178,7 +180,14 @@ class _Laying:
             before = told.nowhere.get(slab.told, (0.0, 0.0))[1]
             told.nowhere[slab.told] = area, before + area * figure.intensity
             return
-        for part in self._shared(entry, slab, figure.rings, under):
+        try:
+            parts = self._shared(entry, slab, figure.rings, under)
+        except UnsharedError as error:
+            self._doubt([one.beam for one in under.bearers if one.beam], slab, str(error))
+            told.notes[f"{slab.told} is not laid on beams: {error}"] = None
+            return
+        told.notes |= dict.fromkeys(_counted_twice(slab, figure, parts))
+        for part in parts:
             force = part.area * figure.intensity
             if not part.bearer.beam:
                 told.elsewhere[part.bearer.told] += force
@@ -291,6 +300,14 @@ def _outlines(slab: FloorSlab) -> Iterator[tuple[Ring, ...]]:
         yield slab.plates[0].rings
         return
     yield from covered([plate.rings for plate in slab.plates])
+
+
+def _counted_twice(slab: FloorSlab, figure: _Figure, parts: Sequence[_Part]) -> Iterator[str]:
+    """Tell where parts of beams overlap."""
+    area = floor_figure(figure.rings, slab.openings).area
+    more = sum(part.area for part in parts) / area - 1.0 if area > 0.0 else 0.0
+    if more > TOLD:
+        yield f"{slab.told}: {more:.1%} of it counts on two beams, as axes all but coincide"
 
 
 def _words(told: _Told) -> Iterator[tuple[str, RemarkKind]]:
