@@ -11,6 +11,7 @@ from pathlib import Path
 
 import numpy as np
 
+from ifccheck.beam import Load, Verdict
 from ifccheck.pipeline import Run
 from ifccheck.sheet import Sheet
 from tests.models import (
@@ -29,6 +30,8 @@ STRONG: Mapping[str, str] = {
 }  # fmt: skip
 FRAME = '\n[frame]\ncontinuity = "always"\n'
 WHOLE = "[cases.floor]\nwhole = true"
+UNLOADED = '[[beams]]\nbeams = ["{}"]\nunloaded = true\n'
+COMPLETE = '[[beams]]\nbeams = ["{}"]\nloads_complete = true\n'
 ALONE = """
 [[combinations]]
 name = "imposed alone"
@@ -108,3 +111,34 @@ def envelope(sheet: Sheet, title: str) -> tuple[np.ndarray, np.ndarray, np.ndarr
 
 def uniform(case: str, intensity: float, beams: str = "*") -> str:
     return load(case, f'line = "{intensity} kN/m"', beams=beams)
+
+
+def girder_on_columns() -> tuple[list[MadeBeam], list[MadeColumn]]:
+    """G along x on columns 7.7 m apart; S1 frames into its left side at x = 3 m, S2 into its right
+    side at x = 5 m, each on a column of its own at its other end."""
+    beams = [
+        lying("G", (0.0, 0.0, 0.0), 8000.0, depth=900.0),
+        lying("S1", (3000.0, 150.0, 300.0), 5850.0, 90.0),
+        lying("S2", (5000.0, -6000.0, 300.0), 5850.0, 90.0),
+    ]
+    columns = [MadeColumn(150.0), MadeColumn(7850.0)]
+    columns += [
+        MadeColumn(x, y, z=(-3000.0, 300.0)) for x, y in ((3000.0, 5850.0), (5000.0, -5850.0))
+    ]
+    return beams, columns
+
+
+def passed(sheet: Sheet, case: str, origin: str = "reaction") -> list[Load]:
+    return [each for each in sheet.loads if each.case == case and each.origin.startswith(origin)]
+
+
+def verdicts(run: Run) -> dict[str, Verdict]:
+    return {mark: sheet.rating.verdict for mark, sheet in sheets_of(run).items()}
+
+
+def reasons(run: Run, mark: str) -> str:
+    return "; ".join(reason.text for reason in sheets_of(run)[mark].rating.reasons)
+
+
+def doubts(run: Run, mark: str) -> list[str]:
+    return [each.text for each in sheets_of(run)[mark].rating.remarks if each.kind == "doubt"]

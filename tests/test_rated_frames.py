@@ -10,56 +10,28 @@ from typing import Any
 
 import pytest
 
-from ifccheck.beam import Load, Verdict
+from ifccheck.beam import Verdict
 from ifccheck.demand.path import LoadPath
 from ifccheck.pipeline import Run
-from ifccheck.sheet import Sheet
 from ifccheck.subjects import gathering
 from tests.models import MadeBeam, MadeColumn, load
 from tests.rated_frames import (
+    COMPLETE,
     STRONG,
+    UNLOADED,
+    doubts,
     envelope,
+    girder_on_columns,
     line_on_columns,
     lying,
+    passed,
     rated_frame,
     reactions,
+    reasons,
     sheets_of,
     uniform,
+    verdicts,
 )
-
-UNLOADED = '[[beams]]\nbeams = ["{}"]\nunloaded = true\n'
-COMPLETE = '[[beams]]\nbeams = ["{}"]\nloads_complete = true\n'
-
-
-def girder_on_columns() -> tuple[list[MadeBeam], list[MadeColumn]]:
-    """G along x on columns 7.7 m apart; S1 frames into its left side at x = 3 m, S2 into its right
-    side at x = 5 m, each on a column of its own at its other end."""
-    beams = [
-        lying("G", (0.0, 0.0, 0.0), 8000.0, depth=900.0),
-        lying("S1", (3000.0, 150.0, 300.0), 5850.0, 90.0),
-        lying("S2", (5000.0, -6000.0, 300.0), 5850.0, 90.0),
-    ]
-    columns = [MadeColumn(150.0), MadeColumn(7850.0)]
-    columns += [
-        MadeColumn(x, y, z=(-3000.0, 300.0)) for x, y in ((3000.0, 5850.0), (5000.0, -5850.0))
-    ]
-    return beams, columns
-
-
-def passed(sheet: Sheet, case: str, origin: str = "reaction") -> list[Load]:
-    return [each for each in sheet.loads if each.case == case and each.origin.startswith(origin)]
-
-
-def verdicts(run: Run) -> dict[str, Verdict]:
-    return {mark: sheet.rating.verdict for mark, sheet in sheets_of(run).items()}
-
-
-def reasons(run: Run, mark: str) -> str:
-    return "; ".join(reason.text for reason in sheets_of(run)[mark].rating.reasons)
-
-
-def doubts(run: Run, mark: str) -> list[str]:
-    return [each.text for each in sheets_of(run)[mark].rating.remarks if each.kind == "doubt"]
 
 
 @pytest.fixture

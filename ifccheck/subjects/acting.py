@@ -9,7 +9,7 @@ from ifccheck.brief.statements import BeamStatement
 from ifccheck.frame.reactions import unknown_reactions
 from ifccheck.frame.spans import Standing
 from ifccheck.subjects.findings import Findings, Sources
-from ifccheck.subjects.framing import settled_steps
+from ifccheck.subjects.framing import unsettled
 from ifccheck.units import clipped
 
 NO_STATEMENT = BeamStatement()
@@ -104,7 +104,6 @@ def _unknown(
         return beside
     contacts: Sequence[Contact] = sources.contacts.get(beam.key, ())
     if framing:
-        settled = settled_steps(framing, beam.key)
-        contacts = [contact for contact in contacts if contact.other_step not in settled]
+        contacts = unsettled(framing, sources.contacts, beam.key)
     reasons = unknown_reactions(beam, contacts, standing, sources.unmeasured)
     return [*reasons, *(framing.passed.get(beam.key, ()) if framing else ()), *beside]

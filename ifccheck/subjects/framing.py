@@ -18,7 +18,7 @@ from ifccheck.errors import BriefError
 from ifccheck.frame.beam_lines import BeamLine
 from ifccheck.frame.boxes import section_extent
 from ifccheck.frame.column_springs import column_stiffness
-from ifccheck.frame.contacts import contacts_of_others, find_contacts
+from ifccheck.frame.contacts import TOLERANCE, contacts_of_others, find_contacts
 from ifccheck.frame.joints import RunsThrough, by_bars
 from ifccheck.frame.lines import Lines, find_lines
 from ifccheck.frame.seats import Seat
@@ -54,9 +54,9 @@ class Framing:
         return {key: each.cases for key, each in self.path.continuity.items()}
 
     @cached_property
-    def standing_steps(self) -> frozenset[int]:
-        """Step ids of the beams that stand."""
-        return frozenset(self.beams[key].step_id for key in self.standing)
+    def standing_keys(self) -> Mapping[int, str]:
+        """Keys of the beams that stand, by step id."""
+        return {self.beams[key].step_id: key for key in self.standing}
 
 
 def stand_in_building(
@@ -183,11 +183,44 @@ def with_reactions(
     return replace(framing, path=path)
 
 
-def settled_steps(framing: Framing, key: str) -> set[int]:
-    """Step ids of what touches a beam and brings no reaction that is not known: what carries it,
-    and every beam that stands, which gives its reactions to what carries that."""
-    carriers = {seat.carrier for seat in framing.lines.seats.get(key, ())}
-    return carriers | framing.standing_steps
+def unsettled(
+    framing: Framing, contacts: Mapping[str, Sequence[Contact]], key: str
+) -> list[Contact]:
+    """Contacts of a beam that may bring it a reaction which is not known.
+
+    What carries it brings none, what rests on it gives its own, and what stands on something else
+    where both touch gives it to that.
+    """
+    settled = {seat.carrier for seat in framing.lines.seats.get(key, ())}
+    settled |= {framing.beams[other].step_id for other in framing.path.resting.get(key, ())}
+    return [
+        contact
+        for contact in contacts.get(key, ())
+        if contact.other_step not in settled and not _stands_there(framing, contacts, contact)
+    ]
+
+
+def _stands_there(
+    framing: Framing, contacts: Mapping[str, Sequence[Contact]], contact: Contact
+) -> bool:
+    """Whether what touches a beam stands on something else at every place where it does."""
+    other = framing.standing_keys.get(contact.other_step)
+    if other is None:
+        return False
+    step, depth = framing.beams[contact.beam].step_id, _depth(framing.beams[other])
+    places = [each for each in contacts.get(other, ()) if each.other_step == step]
+    seats = [each for each in framing.lines.seats[other] if each.carrier not in (0, step)]
+    return bool(places) and all(
+        any(_over(place, seat, depth / 2.0) for seat in seats) for place in places
+    )
+
+
+def _over(contact: Contact, seat: Seat, past: float) -> bool:
+    """Whether a beam touches another over what carries it, and no farther past its faces."""
+    middle = (contact.start + contact.end) / 2.0
+    if not seat.low - TOLERANCE <= middle <= seat.high + TOLERANCE:
+        return False
+    return contact.start >= seat.low - past and contact.end <= seat.high + past
 
 
 def hangers(framing: Framing, key: str) -> Iterator[Remark]:
