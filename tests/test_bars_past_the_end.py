@@ -194,3 +194,22 @@ def test_a_member_of_which_nobody_knows_the_place_leaves_a_doubt(tmp_path: Path)
     assert WHY not in told(rating)
     doubt = "beyond the start of the beam by up to 280 mm: counted to there alone"
     assert any(doubt in remark.text and "R-1" in remark.text for remark in rating.remarks)
+
+
+def test_bars_that_run_out_of_an_edge_column_end_at_its_far_face(tmp_path: Path) -> None:
+    """A column 300 thick meets the start: bars 3 m past it are worth those that end in it."""
+    column = at_the_start("IFCCOLUMN", 0.0, 3600.0)
+    through = among(tmp_path / "through", (3000.0, 0.0), column)
+    within = among(tmp_path / "within", (300.0, 0.0), column)
+    assert "past what meets it there, taken as ending in that" in "; ".join(
+        remark.text for remark in through.remarks
+    )
+    found, wanted = ([s.utilisation for s in each.limit_states] for each in (through, within))
+    assert found == pytest.approx(wanted, rel=1e-9)
+
+
+def test_bars_that_run_on_from_a_column_into_another_beam_develop_there(tmp_path: Path) -> None:
+    column = at_the_start("IFCCOLUMN", 0.0, 3600.0)
+    beyond = Block("N-2", (-2300.0, 0.0, 3000.0), (4000, 300), 600.0, "IFCBEAM")
+    rating = among(tmp_path, (3000.0, 0.0), column, beyond)
+    assert not [remark for remark in rating.remarks if "past what meets it" in remark.text]

@@ -1,6 +1,7 @@
 """Bars that pass the end of their beam: what lies in the air beyond it develops nothing.
 
-Where other concrete of the model meets that end, bars go on into it as they are drawn. Elsewhere
+Where other concrete of the model meets that end, bars go on into it as they are drawn, and no
+farther than it reaches where they leave it for the air. Elsewhere
 they are taken as ending at the beam's own end, and what passes it by more than a slip of the
 drawing cannot be as it is drawn.
 """
@@ -111,10 +112,43 @@ def ended_in_concrete(
     """
     ended = Ended(tuple(bars))
     for end in ENDS:
-        passing = any(_reach(beam, bar, end) > SLIP for bar in ended.bars)
-        if passing and not any(around.meets(contact, end) for contact in contacts):
+        if not any(_reach(beam, bar, end) > SLIP for bar in ended.bars):
+            continue
+        met = [contact for contact in contacts if around.meets(contact, end)]
+        if met:
+            ended = _ended_beyond(beam, ended, end, max(each.beyond for each in met), around)
+        else:
             ended = _ended(beam, ended, end, around, unmeasured)
     return ended
+
+
+def _ended_beyond(beam: Beam, so_far: Ended, end: End, depth: float, around: Surroundings) -> Ended:
+    """End straight bars that run out of what meets an end, on its far side, into the air.
+
+    ``depth`` is how far that reaches beyond the end [mm].
+    """
+    bars, passing = list(so_far.bars), list[tuple[float, Bars]]()
+    for row, bar in enumerate(bars):
+        past = _past(beam, bar, end)
+        goes_on = bar.start_beyond if end == "start" else bar.end_beyond
+        if past > depth + SLIP and not goes_on and not _tip_is_held(beam, bar, end, around):
+            bars[row] = _cut_at(beam, bar, end, depth)
+            passing.append((past - depth, bar))
+    if not passing:
+        return so_far
+    text = f"{_told(passing, end)}: past what meets it there, taken as ending in that"
+    return Ended(tuple(bars), so_far.reasons, (*so_far.remarks, _doubt(beam, text)))
+
+
+def _tip_is_held(beam: Beam, bar: Bars, end: End, around: Surroundings) -> bool:
+    tip = _past(beam, bar, end) - TOLERANCE
+    return _is_at(beam, bar, -tip if end == "start" else beam.length + tip, around)
+
+
+def _cut_at(beam: Beam, bar: Bars, end: End, depth: float) -> Bars:
+    if end == "start":
+        return replace(bar, start=-depth, start_anchor=Anchor.STRAIGHT)
+    return replace(bar, end=beam.length + depth, end_anchor=Anchor.STRAIGHT)
 
 
 def _ended(
@@ -170,11 +204,15 @@ def _reach(beam: Beam, bar: Bars, end: End) -> float:
 
 def _is_held(beam: Beam, bar: Bars, end: End, around: Surroundings) -> bool:
     """Whether bars go on into a member, at most a joint beyond the end."""
+    beyond = min(_reach(beam, bar, end), NEAR + TOLERANCE)
+    return _is_at(beam, bar, -beyond if end == "start" else beam.length + beyond, around)
+
+
+def _is_at(beam: Beam, bar: Bars, x: float, around: Surroundings) -> bool:
+    """Whether a member holds all of some bars at a place along a beam."""
     axis = beam.axis
     if axis is None:
         return False
-    beyond = min(_reach(beam, bar, end), NEAR + TOLERANCE)
-    x = -beyond if end == "start" else beam.length + beyond
     frame = np.array([axis.x, axis.y, axis.z])
     places = np.array([[x, y, bar.z] for y in bar.ys])
     return around.hold(np.array(axis.origin) + places @ frame, beam.step_id)
