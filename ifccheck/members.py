@@ -33,6 +33,8 @@ class Member:
     """Outer ring in plan [mm] of a body that stands upright and does not fill its box"""
     doubt: str = ""
     """Why it cannot be counted on to carry a beam; empty where it can"""
+    bears: bool | None = None
+    """Whether the model calls it load bearing; None where it says nothing of that"""
 
 
 @dataclass(frozen=True, slots=True)

@@ -69,16 +69,22 @@ def lying(
 
 def block(
     name: str, centre: tuple[float, float], size: tuple[float, float], z: tuple[float, float],
-    kind: str = "IfcColumn",
+    kind: str = "IfcColumn", bears: bool | None = None,
 ) -> Maker:  # fmt: skip
-    """An upright box by its middle in plan, its sides along x and y, and its foot and head."""
+    """An upright box by its middle in plan, its sides along x and y, and its foot and head.
+
+    ``bears`` is what the model says of whether it bears load.
+    """
 
     def make(building: Building, setting: Setting) -> None:
         x, y, _ = setting.way((*centre, 0.0))
         ahead = setting.way((1.0, 0.0, 0.0))
         solid = building.extrusion(building.rectangle(*size), z[1] - z[0])
         place = building.placement((x, y, z[0]), (0.0, 0.0, 1.0), ahead)
-        building.member(kind, solid, placement=place, Name=name)
+        product = building.member(kind, solid, placement=place, Name=name)
+        if bears is not None:
+            common = f"Pset_{kind.removeprefix('Ifc')}Common"
+            building.give_set(product, common, LoadBearing=building.entity("IfcBoolean", bears))
 
     return make
 
@@ -144,7 +150,7 @@ def walls() -> list[Maker]:
     """A cantilever drawn into a wall, one that meets its face, a beam on walls, one along one."""
     y = 50000
     return [
-        block("W1", (-150, y), (300, 4000), (0, 6000), "IfcWall"),
+        block("W1", (-150, y), (300, 4000), (0, 6000), "IfcWall", bears=True),
         lying("K1", (-200, y, 3000), (2000, y, 3000)),
         lying("K2", (-300, y + 1000, 3000), (-2300, y + 1000, 3000)),
         block("W2", (10000, y), (250, 2000), (0, 3000), "IfcWall"),

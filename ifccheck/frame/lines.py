@@ -12,6 +12,7 @@ from typing import NamedTuple
 from ifccheck.beam import Contact, EndKind, Model, Reason, Remark, SupportKind
 from ifccheck.frame import told
 from ifccheck.frame.beam_lines import BeamLine, LineSpan, SpanEnd, chains
+from ifccheck.frame.bearing import bearing_of, with_bearing
 from ifccheck.frame.carrying import ENDS, End, Stated, judged_contacts
 from ifccheck.frame.contacts import TOLERANCE
 from ifccheck.frame.ground_up import Joint, Order, order_of, told_against, without_free
@@ -81,18 +82,21 @@ def find_lines(
         Whether a beam passes moment on into another that it meets over their support: asked of
         both, of which one is enough.
     load_bearing
-        Step ids of walls and members that the model or the brief says carry what lies on them; of
-        others under a beam, between its ends, nothing tells whether they do.
+        Step ids of members that the brief says carry what lies on them or ends at them.
     """
     everything = {**contacts, **others}
-    judged = judged_contacts(everything, model.beams, model.out_of_scope)
+    rated = {beam.step_id for beam in model.beams}
+    judged = with_bearing(
+        judged_contacts(everything, model.beams, model.out_of_scope),
+        bearing_of(model.members, load_bearing, rated),
+    )
     members = {member.step_id: member for member in model.members}
     bodies = all_spanning(model.beams, members, others)
     carriers = carriers_of(model.members, judged, model.beams)
     crossed = crossings(judged, bodies)
     clusters = {
         key: without_free(
-            clusters_of(body, judged[key], carriers, crossed.deeper.get(key, {}), load_bearing),
+            clusters_of(body, judged[key], carriers, crossed.deeper.get(key, {})),
             stated.get(key, {}),
         )
         for key, body in bodies.items()

@@ -7,12 +7,12 @@ carries the other; where neither does, nothing tells which.
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Mapping, Sequence, Set
+from collections.abc import Iterable, Iterator, Mapping, Sequence
 from operator import attrgetter
 from typing import Literal, NamedTuple
 
 from ifccheck.beam import Contact
-from ifccheck.frame.carrying import DIRECT_CLASSES, End, Judged
+from ifccheck.frame.carrying import DIRECT_CLASSES, END_TO_END, End, Judged
 from ifccheck.frame.contacts import TOLERANCE, kind_of
 from ifccheck.frame.spanning import Spanning
 from ifccheck.frame.stretches import HOLDS_MOMENT, Carriers, stretch_of
@@ -22,7 +22,10 @@ Way = Literal["below", "end", "through"]
 """Whether the carrier lies under the beam, its end meets it, or the beam passes through it"""
 
 BUILT_IN_DEPTH = 0.75
-"""A column or wall holds a moment that it covers so much of the beam's depth for."""
+"""A column or wall holds a moment that it covers so much of the beam's depth for ..."""
+
+BUILT_IN_WIDTH = 0.5
+"""... and that is so many times as thick along the beam as that is deep."""
 
 DEEPER = 1.25
 """A beam so many times as deep as one that crosses it is about twice as stiff, and carries it."""
@@ -35,8 +38,6 @@ LEVEL = 0.02
 
 CORBEL = 1000.0
 """What is no longer, and fastened to the face of a column or wall, may be a corbel [mm]."""
-
-MAY_FILL = "it may only fill the space under the beam"
 
 _FILLING = ("IfcWall", "IfcMember")
 """What may end under a beam's soffit and carry nothing: partitions, mullions, braces"""
@@ -90,10 +91,12 @@ class Candidate(NamedTuple):
 
     @property
     def rank(self) -> tuple[int, float, bool, str, int]:
-        """Order of those at one place: what stands first, under the beam first, the wider first."""
+        """Order of those at one place: what is sure first, of these what stands, of these what
+        lies under the beam, of these the wider."""
         contact = self.contact
         spans = self.carrier is not None or kind_of(contact.other_class) == "IfcMember"
-        order = ("below", "end", "through").index(self.way) + 2 * spans
+        way = ("below", "end", "through").index(self.way)
+        order = way + 2 * spans + 4 * bool(contact.doubt)
         between = contact.place == "between"
         return order, self.low - self.high, between, contact.other, contact.other_step
 
@@ -118,7 +121,6 @@ def clusters_of(
     judged: Sequence[Judged],
     carriers: Carriers,
     deeper: Mapping[int, str],
-    load_bearing: Set[int] = frozenset(),
 ) -> list[Cluster]:
     """Places along a beam where something may carry it, in their order.
 
@@ -132,10 +134,8 @@ def clusters_of(
         What is known of the bodies of all members.
     deeper
         Keys of the beams that cross through it and carry it, by step id.
-    load_bearing
-        Step ids of walls and members that are known to carry what lies on them.
     """
-    filling = _filling(judged) - load_bearing
+    filling = _filling(judged)
     clusters: list[list[Candidate]] = []
     fillers: dict[int, Candidate] = {}
     reach = 0.0
@@ -153,7 +153,8 @@ def clusters_of(
         else:
             clusters.append([candidate])
             reach = candidate.high
-    found = [_alone(each[0]) if len(each) == 1 else _together(each) for each in clusters]
+    parts = [part for each in clusters for part in (_parted(each) if len(each) > 1 else (each,))]
+    found = [_alone(each[0]) if len(each) == 1 else _together(each) for each in parts]
     return _with_fillers(found, fillers.values()) if fillers else found
 
 
@@ -164,12 +165,7 @@ def _with_fillers(clusters: Sequence[Cluster], fillers: Iterable[Candidate]) -> 
     """
     held = [each for cluster in clusters for each in cluster.candidates if not each.contact.doubt]
     unsure = [
-        Cluster(
-            "between",
-            (one._replace(contact=one.contact._replace(doubt=one.contact.doubt or MAY_FILL)),),
-            stands=False,
-            carriers=(),
-        )
+        Cluster("between", (one,), stands=False, carriers=())
         for one in fillers
         if not any(
             one.low >= each.low - TOLERANCE and one.high <= each.high + TOLERANCE for each in held
@@ -189,8 +185,22 @@ def _filling(judged: Sequence[Judged]) -> set[int]:
         for contact, _ in judged
         if contact.place == "between"
         and contact.side == "below"
+        and contact.doubt
         and kind_of(contact.other_class) in _FILLING
     }
+
+
+def _parted(candidates: Sequence[Candidate]) -> Iterator[Sequence[Candidate]]:
+    """What may carry a beam at one place, apart from what reaches an end of it that nothing sure
+    holds."""
+    held = {each.contact.place for each in candidates if not each.contact.doubt} or None
+    kinds: dict[bool, list[Candidate]] = {True: [], False: []}
+    for each in candidates:
+        place = each.contact.place
+        alone = held is not None and place != "between" and place not in held
+        alone = alone and each.contact.doubt != END_TO_END
+        kinds[alone].append(each)
+    return (kinds[which] for which in (True, False) if kinds[which])
 
 
 def _alone(candidate: Candidate) -> Cluster:
@@ -238,7 +248,8 @@ def _candidate(
 ) -> Candidate:
     low, high = stretch_of(body, contact, carriers)
     place, levels = contact.place, carriers.uprights.get(contact.other_step)
-    built_in = levels is not None and place != "between" and _covers(body, place, *levels)
+    thick = high - low >= BUILT_IN_WIDTH * body.depth - TOLERANCE
+    built_in = levels is not None and place != "between" and thick and _covers(body, place, *levels)
     return Candidate(contact, carrier, way, low, high, built_in)
 
 
@@ -338,7 +349,6 @@ def _stands(judged: Sequence[Judged], crossing: Contact) -> bool:
         contact.side == "below" and contact.bears and not contact.doubt and carrier is None
         for contact, carrier in judged
         if contact.start <= crossing.end and contact.end >= crossing.start
-        if kind_of(contact.other_class) not in _FILLING
     )
 
 

@@ -8,6 +8,7 @@ from dataclasses import dataclass
 from typing import Any, NamedTuple
 
 from ifccheck.beam import Box, Member, Remark, Ring, Unmeasured
+from ifccheck.ifc.bearing import load_bearing
 from ifccheck.ifc.boxes import Boxes
 from ifccheck.ifc.context import Context
 from ifccheck.ifc.entity import ILL_TYPED, Entity, UnreadableError
@@ -89,6 +90,7 @@ class MemberReader:
         unmeasured: list[Unmeasured] = []
         unread: Counter[str] = Counter()
         rough: Counter[str] = Counter()
+        bearing = load_bearing(self._context, products)
         for product in products:
             found = self._extents(product, known.get(product.step_id))
             if not found and self._is_any(product, ROUGHLY):
@@ -98,10 +100,11 @@ class MemberReader:
                 unread[product.ifc_class] += 1
             if not found and self._is_any(product, FRAMING):
                 unmeasured.append(self._unmeasured(product))
-            members += [self._member(product, extent) for extent in found or ()]
+            bears = bearing.get(product.step_id)
+            members += [self._member(product, extent, bears) for extent in found or ()]
         return Members(tuple(members), tuple(unmeasured), (*_unread(unread), *_roughly(rough)))
 
-    def _member(self, product: Product, extent: _Extent) -> Member:
+    def _member(self, product: Product, extent: _Extent, bears: bool | None) -> Member:
         return Member(
             step_id=product.step_id,
             guid=product.guid,
@@ -111,6 +114,7 @@ class MemberReader:
             box=extent.box,
             plan=extent.plan,
             doubt=_use_doubt(product) or extent.doubt,
+            bears=bears,
         )
 
     def _unmeasured(self, product: Product) -> Unmeasured:

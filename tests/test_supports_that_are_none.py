@@ -1,0 +1,104 @@
+"""What touches a beam and may carry nothing shortens no span."""
+
+from __future__ import annotations
+
+import pytest
+
+from tests.frames_of_beams import SETTINGS, Maker, Setting, block, column, lying, read
+from tests.test_beams_in_line import FIX, FREE, ON, PIN, Stood, rows_near, stand
+
+TALL = (0.0, 6000.0)
+KINDS = ("IfcWall", "IfcMember", "IfcColumn")
+
+
+def cantilever(facade: Maker | None = None) -> list[Maker]:
+    """Out of a wall that bears, 3 m up to the face of what may stand at its tip."""
+    wall = block("W", (-150, 0), (300, 4000), TALL, "IfcWall", True)
+    beam = lying("K", (0, 0, 3000), (3000, 0, 3000))
+    return [wall, beam, *([facade] if facade else [])]
+
+
+def at_the_tip(kind: str, bears: bool | None) -> Maker:
+    return block("FACADE", (3100, 0), (200, 4000), TALL, kind, bears)
+
+
+def propped(name: str, stood: Stood) -> bool:
+    """Whether a beam spans between two supports."""
+    ((span,),) = [line for line in stood.spans() if line[0][0] == name]
+    return span[3:] == (PIN, PIN)
+
+
+@pytest.mark.parametrize("setting", SETTINGS, ids=str)
+@pytest.mark.parametrize("kind", KINDS)
+def test_what_the_model_says_bears_no_load_holds_no_tip(kind: str, setting: Setting) -> None:
+    stood = stand(read(cantilever(at_the_tip(kind, bears=False)), setting))
+    rows_near(stood.spans()[0], [("K", 0, 3000, FIX, FREE)])
+
+
+@pytest.mark.parametrize("setting", SETTINGS, ids=str)
+@pytest.mark.parametrize("kind", KINDS)
+def test_what_the_model_says_bears_load_holds_an_end(kind: str, setting: Setting) -> None:
+    assert propped("K", stand(read(cantilever(at_the_tip(kind, bears=True)), setting)))
+
+
+@pytest.mark.parametrize(
+    ("kind", "common"), [("IfcWall", "Pset_WallCommon"), ("IfcMember", "Pset_MemberCommon")]
+)
+def test_of_a_facade_at_a_tip_somebody_must_say_whether_it_carries(kind: str, common: str) -> None:
+    model = read(cantilever(at_the_tip(kind, None)))
+    why = stand(model).why("K")
+    assert why.startswith("supports unknown: at x = 3.10 m it touches only what may not carry it")
+    assert f"FACADE ({kind}): nothing says that it carries" in why
+    assert "load_bearing of [frame]" in why
+    assert common in why
+    assert propped("K", stand(model, load_bearing=["FACADE"]))
+
+
+def test_a_wall_of_which_nothing_is_said_builds_nothing_in() -> None:
+    wall = block("W", (-150, 0), (300, 4000), TALL, "IfcWall")
+    model = read([wall, lying("K", (0, 0, 3000), (3000, 0, 3000))])
+    assert "W (IfcWall): nothing says that it carries" in stand(model).why("K")
+    rows_near(stand(model, load_bearing=["W"]).spans()[0], [("K", 0, 3000, FIX, FREE)])
+
+
+def test_the_brief_does_not_overrule_a_model_that_says_it_bears_no_load() -> None:
+    model = read(cantilever(at_the_tip("IfcWall", bears=False)))
+    assert "the model says that it bears no load" in stand(model, load_bearing=["FACADE"]).why("K")
+
+
+def on_columns(*more: Maker) -> list[Maker]:
+    beam = lying("A", (0, 0, 3000), (8000, 0, 3000))
+    return [beam, column("1", 200, 0), column("2", 7800, 0), *more]
+
+
+def test_between_the_ends_the_model_tells_too() -> None:
+    for bears, spans in ((True, 2), (False, 1)):
+        for kind in KINDS:
+            post = block("P", (3000, 0), (300, 300), (0, 3000), kind, bears)
+            (line,) = stand(read(on_columns(post))).spans()
+            assert len(line) == spans, (kind, bears)
+
+
+def test_a_facade_at_an_end_that_a_column_holds_changes_nothing() -> None:
+    facade = block("F", (8100, 0), (200, 4000), TALL, "IfcWall")
+    (line,) = stand(read(on_columns(facade))).spans()
+    rows_near(line, [("A", 200, 7800, PIN, PIN)])
+
+
+def test_a_partition_at_a_tip_makes_no_end_of_the_column_beside_it() -> None:
+    """The wall reaches from the beam's end to the column's face; without it the end hangs over."""
+    beam = lying("A", (0, 0, 3000), (8000, 0, 3000))
+    columns = [column("1", 1000, 0), column("2", 7800, 0)]
+    wall = block("W", (400, 0), (800, 200), (0, 3000), "IfcWall")
+    assert "W (IfcWall): nothing says" in stand(read([beam, *columns, wall])).why("A")
+    bare = block("W", (400, 0), (800, 200), (0, 3000), "IfcWall", bears=False)
+    (line,) = stand(read([beam, *columns, bare])).spans()
+    rows_near(line, [("A", 0, 1000, FREE, ON), ("A", 1000, 7800, ON, PIN)])
+
+
+@pytest.mark.parametrize("thick", [50.0, 100.0, 250.0])
+def test_what_is_thinner_than_half_the_beams_depth_builds_nothing_in(thick: float) -> None:
+    wall = block("W", (-thick / 2, 0), (thick, 4000), TALL, "IfcWall", bears=True)
+    stood = stand(read([wall, lying("K", (0, 0, 3000), (2000, 0, 3000))]))
+    assert "only W (IfcWall) carries it" in stood.why("K")
+    assert "nothing shows that it holds a moment there" in stood.why("K")
