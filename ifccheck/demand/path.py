@@ -134,7 +134,8 @@ def _carrying(line: BeamLine) -> Iterator[str]:
 
 
 def _carrier(node: Node) -> str:
-    """Key of the beam that carries a line at a support; empty where that stands on the ground."""
+    """Key of the beam that carries a line at a support, the same for all beams that meet there;
+    empty where that stands on the ground."""
     return node.seats[0].carrier_beam if node.seats else ""
 
 
@@ -214,8 +215,7 @@ def _pass_on(rows: Rows, forces: Floats, parts: Parts, given: _Given, path: Load
         if carrier in given.line_of:
             of_node = rows.lines[line].nodes[place]
             beam = given.beams[of_node.seats[0].beam]
-            same = [seat.beam for seat in of_node.seats if seat.carrier_beam == carrier]
-            path.resting[carrier].update(same)
+            path.resting[carrier].update([seat.beam for seat in of_node.seats])
             x = _place_on(beam, of_node.seats[0].x, given.beams[carrier])
             least = _NOTHING * float(whole[node])
             passed = [

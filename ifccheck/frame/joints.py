@@ -10,10 +10,10 @@ import numpy as np
 
 from ifccheck.beam import Bars, Beam
 from ifccheck.frame.boxes import Bools, Floats, Ints, section_extent
-from ifccheck.frame.carrying import End
+from ifccheck.frame.carrying import End, Stated
 from ifccheck.frame.contacts import TOLERANCE
 from ifccheck.frame.ground_up import Joint
-from ifccheck.frame.seats import LEVEL, Candidate, Cluster
+from ifccheck.frame.seats import LEVEL, Candidate, Cluster, Seat
 from ifccheck.frame.spanning import Spanning
 
 OFF_LINE = 50.0
@@ -21,6 +21,12 @@ OFF_LINE = 50.0
 
 WIDEST_JOINT = 1500.0
 """Ends farther apart are two supports, however wide what stands between them [mm]."""
+
+
+BY_THE_BRIEF = "the brief says that its end holds none"
+BY_THE_OTHERS = "the brief says that the other's end holds none"
+ON_ITS_OWN = "each of the two stands on something of its own"
+"""Why moment does not pass over a support where bars, or the brief, would have it"""
 
 
 class Meeting(NamedTuple):
@@ -92,6 +98,34 @@ def continuous_joints(
         one for one, other in meeting.items() if runs_through(_meeting(one, other, clusters))
     }
     return {one: other for one, other in meeting.items() if one in passing or other in passing}
+
+
+def stated_apart(joints: Mapping[Joint, Joint], stated: Stated) -> dict[Joint, str]:
+    """Why ends do not go on into each other, of one of which the brief says that it holds none.
+
+    One that the brief says is fixed goes on: the other beam is then what holds it.
+    """
+    said = {(key, end) for key, ends in stated.items() for end in ends if ends[end] != "fixed"}
+    own = {one: BY_THE_BRIEF for one in joints if one in said}
+    return {one: BY_THE_OTHERS for one, other in joints.items() if other in said} | own
+
+
+def carried_apart(
+    joints: Mapping[Joint, Joint], seats: Mapping[str, Sequence[Seat]]
+) -> dict[Joint, str]:
+    """Why ends do not go on into each other that different beams carry, or a beam and what stands.
+
+    What either brings down is then its own, and goes to what carries it.
+    """
+    of_end = {(key, seat.place): seat for key, _ in joints for seat in seats[key]}
+    found: dict[Joint, str] = {}
+    for one, other in joints.items():
+        own, others = of_end.get(one), of_end.get(other)
+        if not own or not others or own.doubt or others.doubt:
+            continue
+        if own.carrier_beam != others.carrier_beam:
+            found[one] = ON_ITS_OWN
+    return found
 
 
 def _meeting(one: Joint, other: Joint, clusters: Mapping[str, Sequence[Cluster]]) -> Meeting:

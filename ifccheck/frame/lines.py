@@ -16,7 +16,14 @@ from ifccheck.frame.bearing import bearing_of, with_bearing
 from ifccheck.frame.carrying import ENDS, End, Stated, judged_contacts
 from ifccheck.frame.contacts import TOLERANCE
 from ifccheck.frame.ground_up import Joint, Order, order_of, told_against, without_free
-from ifccheck.frame.joints import RunsThrough, continuous_joints, meeting_ends
+from ifccheck.frame.joints import (
+    ON_ITS_OWN,
+    RunsThrough,
+    carried_apart,
+    continuous_joints,
+    meeting_ends,
+    stated_apart,
+)
 from ifccheck.frame.seats import (
     Cluster,
     Place,
@@ -28,6 +35,9 @@ from ifccheck.frame.seats import (
 )
 from ifccheck.frame.spanning import Spanning, all_spanning
 from ifccheck.frame.stretches import carriers_of
+from ifccheck.units import show
+
+_NO_ORDER = Order({}, frozenset())
 
 
 class Lines(NamedTuple):
@@ -41,7 +51,8 @@ class Lines(NamedTuple):
     order: tuple[str, ...]
     """All that stands: what carries comes before what it carries"""
     doubts: Mapping[str, tuple[Reason, ...]]
-    """On beams that cross others at one level, or that go on into beams that do not stand"""
+    """On beams that cross others at one level, that go on into beams that do not stand, or that
+    may go on into what stands on something else"""
     remarks: Mapping[str, tuple[Remark, ...]]
 
 
@@ -53,6 +64,8 @@ class _Frame(NamedTuple):
     meeting: Mapping[Joint, Joint]
     joints: Mapping[Joint, Joint]
     """Those that meet and pass moment on"""
+    parted: Mapping[Joint, str]
+    """Why others do not, where bars or the brief would have it"""
     stated: Stated
     order: Order
 
@@ -104,21 +117,35 @@ def find_lines(
     keys = [beam.key for beam in model.beams if beam.axis is not None and beam.runs]
     meeting = meeting_ends({key: clusters[key] for key in keys}, bodies)
     joints = continuous_joints(meeting, clusters, runs_through)
-    order = order_of(clusters, stated, joints, corbels(judged, bodies))
-    frame = _Frame(bodies, clusters, meeting, joints, stated, order)
-    seats = {key: _seats(frame, key) for key in clusters}
+    fastened = corbels(judged, bodies)
+    frame = _Frame(bodies, clusters, meeting, joints, {}, stated, _NO_ORDER)
+    frame, seats = _stood(frame, stated_apart(joints, stated), fastened)
     unknown = _unknown(frame, keys, seats)
     spans = {
         key: tuple(_spans(frame, key, seats[key], unknown)) for key in keys if key not in unknown
     }
     return Lines(
-        lines=tuple(chains(spans, joints, bodies)),
+        lines=tuple(chains(spans, frame.joints, bodies)),
         unknown=unknown,
         seats=seats,
-        order=_carriers_first(seats, order),
+        order=_carriers_first(seats, frame.order),
         doubts=_doubts(frame, crossed.level, spans),
         remarks={key: tuple(_remarks(frame, seats[key], own)) for key, own in spans.items()},
     )
+
+
+def _stood(
+    frame: _Frame, apart: Mapping[Joint, str], fastened: Set[str]
+) -> tuple[_Frame, dict[str, tuple[Seat, ...]]]:
+    """What stands and on what, with moment passed on only between beams that stand on the same."""
+    while True:
+        joints = {one: other for one, other in frame.joints.items() if one not in apart}
+        order = order_of(frame.clusters, frame.stated, joints, fastened)
+        frame = frame._replace(joints=joints, parted={**frame.parted, **apart}, order=order)
+        seats = {key: _seats(frame, key) for key in frame.clusters}
+        apart = carried_apart(joints, seats)
+        if not apart:
+            return frame, seats
 
 
 def _seats(frame: _Frame, key: str) -> tuple[Seat, ...]:
@@ -195,7 +222,20 @@ def _doubts(
         for other in [frame.joints[key, end][0] for end in ENDS if (key, end) in frame.joints]:
             if other not in standing:
                 found.setdefault(key, []).append(told.goes_on_into(frame.bodies[other].told))
+        for end in ENDS:
+            if frame.parted.get((key, end)) == ON_ITS_OWN:
+                other = frame.meeting[key, end][0]
+                found.setdefault(key, []).append(_how(end, frame.bodies[other].told))
     return {key: tuple(own) for key, own in found.items()}
+
+
+def _how(end: End, other: str) -> Reason:
+    """Say that a beam may bend with one that it meets over two supports."""
+    text = (
+        f"reactions not sure: moment may pass into {other}, and {ON_ITS_OWN}; say how its {end}"
+        " stands under [[supports]]"
+    )
+    return Reason(text, blocking=False)
 
 
 def _holds_alone(seat: Seat, said: Mapping[End, SupportKind]) -> bool:
@@ -261,7 +301,17 @@ def _remarks(frame: _Frame, seats: Sequence[Seat], spans: Sequence[LineSpan]) ->
         if place != "between" and end.seat is seat and (seat.beam, place) in frame.meeting:
             other = frame.bodies[frame.meeting[seat.beam, place][0]].told
             passes = (seat.beam, place) in frame.joints
-            yield told.meets(seat, other, goes_on=end.kind == "continuous", passes=passes)
+            if why := frame.parted.get((seat.beam, place)):
+                yield _apart(seat, other, why)
+            else:
+                yield told.meets(seat, other, goes_on=end.kind == "continuous", passes=passes)
+
+
+def _apart(seat: Seat, other: str, why: str) -> Remark:
+    """Say why a beam does not go on into one that it meets."""
+    where = f"over {seat.carrier_name} at x = {show(seat.x, 'length')}"
+    text = f"meets {other} {where}, and takes no moment from it: {why}"
+    return Remark(seat.beam, "supports", text, "assumption")
 
 
 def _carriers_first(seats: Mapping[str, Sequence[Seat]], order: Order) -> tuple[str, ...]:
