@@ -46,7 +46,7 @@ def test_beams_that_stand_on_different_members_do_not_go_on_unseen(tmp_path: Pat
     """B spans 6 m from the girder's axis to the middle of its column, simply: w L / 2."""
     found, why, load = told(tmp_path)
     assert set(found.values()) == {Verdict.NOT_RATED}
-    assert "say how its start stands under [[supports]]" in why
+    assert "call its start pinned under [[supports]]" in why
     assert load == pytest.approx(10.0 * 6.0 / 2.0, rel=1e-9)
     found, why, load = told(tmp_path / "said", SAID.format("B", "start", "pinned"))
     assert set(found.values()) == {Verdict.ADEQUATE}

@@ -232,8 +232,8 @@ def _doubts(
 def _how(end: End, other: str) -> Reason:
     """Say that a beam may bend with one that it meets over two supports."""
     text = (
-        f"reactions not sure: moment may pass into {other}, and {ON_ITS_OWN}; say how its {end}"
-        " stands under [[supports]]"
+        f"reactions not sure: moment may pass into {other}, and {ON_ITS_OWN}; call its {end}"
+        " pinned under [[supports]]"
     )
     return Reason(text, blocking=False)
 
