@@ -126,6 +126,13 @@ class Framed:
         """Every line once."""
         return iter(dict.fromkeys(self.lines.values()))
 
+    @property
+    def joined(self) -> Iterator[dict[str, str]]:
+        """Marks, by key, of the beams of every line of several."""
+        for key, line in self.lines.items():
+            if line.spans[0].beam == key != line.spans[-1].beam:
+                yield line.marks
+
 
 class Total(NamedTuple):
     """What becomes of the loads of one case on all beams, unfactored [N]."""

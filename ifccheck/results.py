@@ -17,6 +17,7 @@ from ifccheck.publish.report import Assumption, CaseSummary, Report
 from ifccheck.publish.words import CURES, NO_LOAD, head_of
 from ifccheck.rating.answers import ratings_of, unrated, unstated_stirrups
 from ifccheck.rating.batch import Batch
+from ifccheck.rating.in_line import held_by_lines
 from ifccheck.rating.results import Rating
 from ifccheck.rating.subject import Subject, Unrated
 from ifccheck.sheet import Sheet, bare_sheet, sheet_maker
@@ -51,6 +52,8 @@ def report_of(
         rating.beam: rating for batch in batches for rating in ratings_of(batch, standard, cases)
     }
     answers |= {each.beam.key: unrated(each, standard) for each in gathered.unrated}
+    if gathered.framed:
+        answers = held_by_lines(answers, gathered.framed.joined)
     ratings = {beam.key: answers[beam.key] for beam in model.beams}
     return Report(
         version=version,

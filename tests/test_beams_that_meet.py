@@ -2,13 +2,18 @@
 
 from __future__ import annotations
 
+import math
+from collections.abc import Mapping
 from pathlib import Path
 
 import pytest
 
 from ifccheck.beam import Verdict
+from ifccheck.rating.in_line import NOT_HELD
 from tests.models import MadeBeam, MadeColumn
 from tests.rated_frames import (
+    STRONG,
+    doubts,
     line_on_columns,
     lying,
     passed,
@@ -20,6 +25,7 @@ from tests.rated_frames import (
     verdicts,
 )
 
+WEAK = {**STRONG, "BottomBars": "2-10M"}
 SAID = '[[supports]]\nbeams = ["{}"]\n{} = "{}"\n'
 
 
@@ -83,3 +89,45 @@ def test_an_end_that_the_brief_calls_fixed_is_held_by_the_beam_that_it_goes_on_i
     )
     outer, _ = reactions(sheets_of(run)["T1"], "floor")
     assert outer == pytest.approx(7.0 / 16.0 * 60.0 + 1.5, rel=1e-9)
+
+
+# --- beams that lean on each other ----------------------------------------------------------------
+
+
+def line_with(second: Mapping[str, str]) -> tuple[list[MadeBeam], list[MadeColumn]]:
+    """Two beams over three columns, the first of them strong."""
+    beams, columns = line_on_columns([6000.0, 6000.0], cut=True)
+    beams[1] = lying("T2", beams[1].origin, beams[1].length, notation=second)
+    return beams, columns
+
+
+@pytest.mark.parametrize(
+    ("second", "why"),
+    [({**STRONG, "TopBars": "none"}, "falls short"), ({}, "is not rated")],
+)
+def test_a_beam_that_goes_on_into_one_that_is_not_adequate_is_not(
+    tmp_path: Path, second: Mapping[str, str], why: str
+) -> None:
+    """T1 alone has all that it needs, but the moment over the support is not carried on."""
+    entries = uniform("floor", 10.0), uniform("press", 1.0)
+    run = rated_frame(tmp_path, *line_with(second), *entries)
+    rating = sheets_of(run)["T1"].rating
+    assert rating.verdict is Verdict.NOT_RATED
+    assert reasons(run, "T1") == f"{NOT_HELD}: T2, which {why}"
+    assert math.isnan(rating.utilisation)
+    assert [math.isnan(safe.factor) for safe in rating.safe_loads] == [True]
+    assert run.exit_status == 3
+    said = SAID.format("T1", "end", "pinned")
+    run = rated_frame(tmp_path / "apart", *line_with(second), *entries, said)
+    assert verdicts(run)["T1"] is Verdict.ADEQUATE
+
+
+def test_a_beam_that_falls_short_stays_so_beside_one_that_is_not_rated(tmp_path: Path) -> None:
+    beams, columns = line_with({})
+    beams[0] = lying("T1", beams[0].origin, beams[0].length, notation=WEAK)
+    run = rated_frame(tmp_path, beams, columns, uniform("floor", 30.0), uniform("press", 1.0))
+    rating = sheets_of(run)["T1"].rating
+    assert rating.verdict is Verdict.FALLS_SHORT
+    assert f"also unsettled: {NOT_HELD}: T2, which is not rated" in doubts(run, "T1")
+    assert [math.isnan(safe.factor) for safe in rating.safe_loads] == [True]
+    assert sheets_of(run)["T2"].rating.reasons[0].text == "no reinforcement found"

@@ -10,6 +10,7 @@ from dataclasses import dataclass
 
 from ifccheck.beam import Beam, Outline, Verdict
 from ifccheck.rating import Rating
+from ifccheck.rating.in_line import NOT_HELD
 from ifccheck.units import show_ratio
 
 # Controls, marks that turn the direction of the text round, and halves of a character.
@@ -132,6 +133,7 @@ CURES = {
     "load acts upward": "write upward = true in that entry of [[loads]] if it is meant, else take"
     " its minus sign out",
     "supports unknown": "write an entry of [[supports]] that names them",
+    NOT_HELD: "mend what it goes on into, or call the end that meets it pinned under [[supports]]",
 }
 """What lets a beam be rated, for reasons that the brief can settle; by the words before ":"."""
 

@@ -170,7 +170,7 @@ def safe_loads(
     return [
         _safe_load(case, own, factor, titles[state], position, combination if state >= 0 else "")
         if own is not None and whole
-        else _unknown(case, own)
+        else _unknown(case, _assigned(own))
         if own is not None
         else None
         for own, whole, factor, state, position, combination in rows
@@ -181,9 +181,14 @@ def _assigned(loads: Sequence[Load]) -> str:
     return "; ".join([load.text for load in loads]) or "on beams that it goes on into"
 
 
-def _unknown(case: str, loads: Sequence[Load]) -> SafeLoad:
+def not_known(safe: SafeLoad) -> SafeLoad:
+    """The same, of a beam of which something turned out not to be settled."""
+    return _unknown(safe.case, safe.assigned)
+
+
+def _unknown(case: str, assigned: str) -> SafeLoad:
     """Of a beam of which something is not settled."""
-    return SafeLoad(case, math.nan, _assigned(loads), math.nan, "", _UNKNOWN_CASE, "", math.nan, "")
+    return SafeLoad(case, math.nan, assigned, math.nan, "", _UNKNOWN_CASE, "", math.nan, "")
 
 
 def _safe_load(
