@@ -125,6 +125,17 @@ def rate(models: Sequence[Path], brief_path: Path, say: Say = lambda _: None) ->
     return Run(plan, rated)
 
 
+APART = (
+    Remark(
+        None,
+        "supports",
+        "beams of one model are not stood on those of another: what they bring to each other is not"
+        " in the loads",
+        "doubt",
+    ),
+)
+"""Of models that are rated together, with beams stood on what they show"""
+
 MODEL_SUFFIXES = (".ifc", ".ifczip", ".ifcxml")
 
 
@@ -294,6 +305,7 @@ def rate_model(read: Read, matches: Matches, plan: Plan, found: Sequence[Found],
         *combination_remarks(plan.brief),
         *upward_remarks(plan.brief),
         *plan.remarks,
+        *(APART if plan.brief.frame and len(found) > 1 else ()),
     )
     report = results.report_of(
         model, gathered, rated, remarks, version=__version__, brief=plan.brief,

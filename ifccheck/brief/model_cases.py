@@ -23,13 +23,15 @@ def taken_loads(
     spans: Mapping[str, tuple[float, float]],
 ) -> tuple[Load, ...]:
     """Return the loads of the model's cases that the brief takes, cut to each beam's length, or
-    to its span where that is longer."""
-    loads = []
-    for action in found.laid:
-        taken = brief.from_model.get(action.case)
-        if taken is not None:
-            loads.append(_load(action, taken, beams[action.beam], spans.get(action.beam)))
-    return tuple(load for load in loads if load is not None)
+    to its span where that is longer.
+
+    What is laid on a beam and lies wholly beyond its end, if by little, stands at that end.
+    """
+    return tuple(
+        _load(action, taken, beams[action.beam], spans.get(action.beam))
+        for action in found.laid
+        if (taken := brief.from_model.get(action.case)) is not None
+    )
 
 
 def origin_of(action: LaidAction, taken: TakenCase) -> str:
@@ -48,20 +50,21 @@ def upward_of(brief: Brief, found: ModelLoads) -> dict[str, bool]:
 
 def _load(
     action: LaidAction, taken: TakenCase, beam: Beam, span: tuple[float, float] | None
-) -> Load | None:
+) -> Load:
     first, last = span or (0.0, beam.length)
     low, high = min(0.0, first), max(beam.length, last)
-    start, end = max(action.start, low), min(action.end, high)
-    values = action.values
-    if action.kind == "line":
-        if end <= start:
-            return None
+    start, end = (min(max(x, low), high) for x in (action.start, action.end))
+    kind, values = action.kind, action.values
+    if kind == "line" and end <= start:
+        whole = (values[0] + values[1]) / 2.0 * (action.end - action.start)
+        kind, values = "point", (whole, whole)
+    elif kind == "line":
         slope = (values[1] - values[0]) / (action.end - action.start)
         values = tuple(values[0] + slope * (x - action.start) for x in (start, end))  # type: ignore[assignment]
     return Load(
         beam=beam.key,
         case=taken.case,
-        kind=action.kind,
+        kind=kind,
         start=start,
         end=end,
         values=values,

@@ -33,6 +33,8 @@ IN_A_RING = "supports unknown: what carries it is itself carried by what it carr
 
 _NOTHING = 1e-9
 """Part of all that a line carries in a case below which a reaction is none"""
+_UPRIGHT = 1e-6
+"""Square of the horizontal part of a unit vector below which it is upright"""
 
 
 @dataclass(frozen=True, slots=True)
@@ -245,14 +247,21 @@ def _forces(
 
 
 def _place_on(beam: Beam, x: float, carrier: Beam) -> float:
-    """x on the carrier of a place along a beam, within the carrier [mm]."""
+    """x on the carrier of a place along a beam, within the carrier [mm].
+
+    Forces act vertically: they meet the carrier where that lies in plan, however it slopes; on one
+    that stands upright, of which nothing is rated, at their height.
+    """
     assert beam.axis is not None
     assert carrier.axis is not None
-    point = [o + x * d for o, d in zip(beam.axis.origin, beam.axis.x, strict=True)]
-    along = sum(
-        (p - o) * d for p, o, d in zip(point, carrier.axis.origin, carrier.axis.x, strict=True)
-    )
-    return min(max(along, 0.0), carrier.axis.length)
+    own, along = beam.axis, carrier.axis
+    away = [own.origin[i] + x * own.x[i] - along.origin[i] for i in range(3)]
+    level = along.x[0] ** 2 + along.x[1] ** 2
+    if level < _UPRIGHT:
+        place = away[2] * along.x[2]
+    else:
+        place = (away[0] * along.x[0] + away[1] * along.x[1]) / level
+    return min(max(place, 0.0), along.length)
 
 
 def _reaction(beam: Beam, carrier: str, case: str, force: float, x: float, apart: bool) -> Load:

@@ -289,8 +289,7 @@ def _cantilever(seat: Seat, length: float) -> LineSpan:
 def _remarks(frame: _Frame, seats: Sequence[Seat], spans: Sequence[LineSpan]) -> Iterator[Remark]:
     """What an engineer must see of how a beam was stood."""
     for seat in seats:
-        if seat.carrier:
-            yield told.supported(seat)
+        yield told.supported(seat) if seat.carrier else _held(seat)
     first, last = spans[0].start, spans[-1].end
     if first.kind == "free":
         yield told.hangs_over(spans[0])
@@ -305,6 +304,12 @@ def _remarks(frame: _Frame, seats: Sequence[Seat], spans: Sequence[LineSpan]) ->
                 yield _apart(seat, other, why)
             else:
                 yield told.meets(seat, other, goes_on=end.kind == "continuous", passes=passes)
+
+
+def _held(seat: Seat) -> Remark:
+    """Say that nothing in the model carries an end."""
+    text = f"held at its {seat.place} by the brief alone: nothing in the model is taken to carry it"
+    return Remark(seat.beam, "supports", text, "assumption")
 
 
 def _apart(seat: Seat, other: str, why: str) -> Remark:
