@@ -14,7 +14,7 @@ from typing import NamedTuple
 
 import numpy as np
 
-from ifccheck.analysis.lines import continuous
+from ifccheck.analysis.lines import continuous, outer_moments
 from ifccheck.analysis.parts import Parts
 from ifccheck.analysis.spans import FREE, in_line
 from ifccheck.analysis.statics import Solved, solve
@@ -169,8 +169,7 @@ def _note_continuity(
     path: LoadPath,
 ) -> None:
     """Keep the moments at the ends of spans that go on, and what comes from beside at supports."""
-    near, along = solved.start.moment, solved.start.reaction * solved.spans.length
-    far = near + along - solved.totals.moment
+    near, far = outer_moments(solved, np.arange(rows.beam_of.size))
     simple = (solved.spans.start_kind != FREE) & (solved.spans.end_kind != FREE)
     moments = np.stack([np.where(simple, near, 0.0), np.where(simple, far, 0.0)], axis=-1)
     goes_on = in_line(solved.spans)
