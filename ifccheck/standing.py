@@ -64,6 +64,10 @@ class Contact(NamedTuple):
     """Whether it is near enough, and of a kind, to hold a beam; else it may only load it"""
     doubt: str = ""
     """Why it cannot be counted on to hold an end; empty where it can"""
+    across: float = 1.0
+    """Part of its own width, or of the beam's where that is less, that the two have in common"""
+    upward: float = 1.0
+    """Part of the beam's depth that the other covers; all where the beam sits on it"""
 
     @property
     def other_name(self) -> str:

@@ -102,3 +102,99 @@ def test_what_is_thinner_than_half_the_beams_depth_builds_nothing_in(thick: floa
     stood = stand(read([wall, lying("K", (0, 0, 3000), (2000, 0, 3000))]))
     assert "only W (IfcWall) carries it" in stood.why("K")
     assert "nothing shows that it holds a moment there" in stood.why("K")
+
+
+# What columns stand on -----------------------------------------------------------------------
+
+
+def weak_in_the_middle(*more: Maker) -> Stood:
+    """On columns 7.6 m apart, with more at midspan."""
+    return stand(read(on_columns(*more)))
+
+
+AIRBORNE = {
+    "a stub": block("P", (4000, 0), (400, 400), (2800, 3000)),
+    "a hanger": block("P", (4000, 0), (400, 400), (2500, 6000)),
+    "a column planted a little low": block("P", (4000, 0), (400, 400), (2994, 6000)),
+    "a kicker": block("P", (4000, 0), (400, 400), (2900, 3000), "IfcFooting"),
+    "a post that is no wider than a handrail's": block("P", (4000, 0), (40, 40), (0, 3000)),
+    "a graze": block("P", (4000, 335), (400, 400), TALL),
+    "a post of another class": block("P", (4000, 0), (120, 120), (2500, 3000), "IfcBeam"),
+    "a member that bears": block("P", (4000, 0), (120, 120), (2500, 3000), "IfcMember", True),
+}
+
+
+@pytest.mark.parametrize("post", AIRBORNE.values(), ids=AIRBORNE)
+def test_what_stands_on_nothing_or_hardly_touches_shortens_no_span(post: Maker) -> None:
+    stood = weak_in_the_middle(post)
+    assert not stood.spans()
+    assert "it touches only what may not carry it (P (" in stood.why("A")
+
+
+def test_the_brief_may_say_that_a_column_stands() -> None:
+    stub = block("P", (4000, 0), (400, 400), (2800, 3000))
+    silent = weak_in_the_middle(stub).why("A")
+    assert (
+        "nothing that the model shows carries it: if it stands, name it in load_bearing" in silent
+    )
+    (line,) = stand(read(on_columns(stub)), load_bearing=["P"]).spans()
+    assert len(line) == 2
+
+
+@pytest.mark.parametrize("gap", [-40.0, 0.0, 45.0])
+@pytest.mark.parametrize("kind", ["IfcFooting", "IfcPile", "IfcSlab", "IfcColumn", "IfcWall"])
+def test_a_column_stands_on_what_lies_under_its_foot(kind: str, gap: float) -> None:
+    """1 m over the feet of the others; what is under it reaches down to theirs, or stands alone."""
+    low = 0.0 if kind in ("IfcColumn", "IfcWall") else 700.0
+    under = block("U", (4000, 0), (400, 400), (low, 1000 - gap), kind, None)
+    (line,) = weak_in_the_middle(under, block("P", (4000, 0), (400, 400), (1000, 3000))).spans()
+    assert len(line) == 2
+
+
+def test_a_column_does_not_stand_on_what_lies_too_far_under_or_beside_its_foot() -> None:
+    post = block("P", (4000, 0), (400, 400), (1000, 3000))
+    for x, head in ((4000, 900), (4405, 1000)):
+        under = block("U", (x, 0), (400, 400), (700, head), "IfcFooting")
+        assert not weak_in_the_middle(under, post).spans()
+
+
+def test_a_column_stands_on_a_beam_where_that_stands() -> None:
+    post = block("P", (4000, 0), (400, 400), (2000, 3000))
+    below = lying("B", (4000, -4000, 1400), (4000, 4000, 1400))
+    feet = [column(name, 4000, y, (0.0, 1400.0)) for name, y in (("3", -3800), ("4", 3800))]
+    lines = weak_in_the_middle(post, below, *feet).spans()
+    assert sorted(len(line) for line in lines) == [1, 2]
+    assert not weak_in_the_middle(post, below, feet[0]).spans()
+
+
+def test_columns_of_storeys_stand_on_each_other() -> None:
+    storeys = [(0.0, 3000.0), (3000.0, 6000.0), (6000.0, 9000.0)]
+    posts = [column(f"{n}-{x}", x, 0, z) for n, z in enumerate(storeys) for x in (200, 7800)]
+    upper = stand(read([lying("A", (0, 0, 9000), (8000, 0, 9000)), *posts])).spans()
+    rows_near(upper[0], [("A", 200, 7800, PIN, PIN)])
+    gone = [posts[0], *posts[2:]]
+    why = stand(read([lying("A", (0, 0, 9000), (8000, 0, 9000)), *gone])).why("A")
+    assert "2-7800 (IfcColumn): nothing that the model shows carries it" in why
+
+
+@pytest.mark.parametrize(("common", "holds"), [(15.0, False), (180.0, False), (220.0, True)])
+def test_an_end_face_counts_where_it_meets_a_third_of_the_depth(common: float, holds: bool) -> None:
+    """The beam is 600 deep."""
+    tall = block("1", (-200, 0), (400, 400), (0, 3000 + common))
+    beam = lying("A", (0, 0, 3000), (8000, 0, 3000))
+    stood = stand(read([beam, tall, column("2", 7800, 0)]))
+    assert bool(stood.spans()) is holds
+    if not holds:
+        assert "less than a third of the depth" in stood.why("A")
+
+
+def test_an_end_face_that_grazes_its_carrier_is_not_carried() -> None:
+    girder = [
+        lying("G", (0, 0, 3000), (8000, 0, 3000), 700),
+        column("1", 200, 0),
+        column("2", 7400, 0),
+    ]
+    for x, holds in ((7000, True), (8135, False)):
+        beam = lying("S", (x, 150, 3100), (x, 5000, 3100))
+        stood = stand(read([*girder, beam, column("3", x, 4800, (0.0, 3100.0))]))
+        assert (stood.key("S") not in stood.lines.unknown) is holds

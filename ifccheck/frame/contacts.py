@@ -118,6 +118,8 @@ class _Touches:
     """The other is of a kind that stands on the ground, not one that spans (P)"""
     reach: Floats
     """Least and greatest place of the other along the beam's x, from its middle [mm] (P, 2)"""
+    width: Floats
+    """What the other covers along the beam's y, or the beam where that is less [mm] (P)"""
     tolerance: float
     """Gap up to which they touch [mm]"""
 
@@ -260,6 +262,7 @@ def _touches(
         holds(outer.grown(TOLERANCE), inner),
         neighbours.upright[other],
         _reach(outer, inner),
+        _width(outer, inner),
         tolerance,
     )
     return touching, (pairs[0][apart], pairs[1][apart])
@@ -271,6 +274,20 @@ def _reach(own: Boxes, others: Boxes) -> Floats:
     middle = np.einsum("pd,pd->p", others.centre - own.centre, x)
     half = np.einsum("pk,pk->p", others.half, np.abs(np.einsum("pkd,pd->pk", others.axes, x)))
     return np.stack([middle - half, middle + half], axis=-1)
+
+
+def _width(own: Boxes, others: Boxes) -> Floats:
+    """The lesser of the widths of each pair along the y of the beam (P)."""
+    turn = np.abs(np.einsum("pkd,pd->pk", others.axes, own.axes[:, 1]))
+    reach = np.einsum("pk,pk->p", others.half, turn)
+    return np.asarray(2.0 * np.minimum(reach, own.half[:, 1]))
+
+
+def _common(touches: _Touches, row: int) -> Floats:
+    """What each pair has in common along one axis of the beam [mm] (P)."""
+    half = touches.half[:, row, None]
+    low, high = np.clip(touches.covered[:, row], -half, half).T
+    return np.asarray(high - low)
 
 
 def _contacts(spanning: _Spanning, neighbours: _Neighbours, touches: _Touches) -> Iterator[Contact]:
@@ -287,6 +304,11 @@ def _contacts(spanning: _Spanning, neighbours: _Neighbours, touches: _Touches) -
     side = np.select([below, above, beside], [0, 1, 2], 3)
     hidden = touches.within & neighbours.proxy[touches.other]
     bears = ~neighbours.rests[touches.other] & (touches.tolerance <= TOLERANCE)
+    across = _common(touches, 1) / np.maximum(touches.width, 1e-9)
+    depth = np.maximum(2.0 * touches.half[:, 2], 1e-9)
+    at_soffit = touches.covered[:, 2, 0] <= -touches.half[:, 2] + TOLERANCE
+    sits = at_soffit & (end - start >= NEAR)
+    upward = np.where(sits, 1.0, _common(touches, 2) / depth)
     for place, there in _places(touches, above | beside).items():
         rows = np.flatnonzero(there & ~hidden)
         sides = np.minimum(side, 2) if place == "between" else side
@@ -305,6 +327,8 @@ def _contacts(spanning: _Spanning, neighbours: _Neighbours, touches: _Touches) -
             np.fmax(beyond[place][rows], 0.0).tolist(),
             bears[rows].tolist(),
             [member.doubt for member in members],
+            across[rows].tolist(),
+            upward[rows].tolist(),
         )
 
 

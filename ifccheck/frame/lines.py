@@ -12,9 +12,10 @@ from typing import NamedTuple
 from ifccheck.beam import Contact, EndKind, Model, Reason, Remark, SupportKind
 from ifccheck.frame import told
 from ifccheck.frame.beam_lines import BeamLine, LineSpan, SpanEnd, chains
-from ifccheck.frame.bearing import bearing_of, with_bearing
-from ifccheck.frame.carrying import ENDS, End, Stated, judged_contacts
+from ifccheck.frame.bearing import bearing_of, with_bearing, with_doubts
+from ifccheck.frame.carrying import ENDS, STANDING_USES, End, Judged, Stated, judged_contacts
 from ifccheck.frame.contacts import TOLERANCE
+from ifccheck.frame.feet import Feet, feet_of
 from ifccheck.frame.ground_up import Joint, Order, order_of, told_against, without_free
 from ifccheck.frame.joints import (
     ON_ITS_OWN,
@@ -34,7 +35,7 @@ from ifccheck.frame.seats import (
     seat_of,
 )
 from ifccheck.frame.spanning import Spanning, all_spanning
-from ifccheck.frame.stretches import carriers_of
+from ifccheck.frame.stretches import Carriers, carriers_of
 from ifccheck.units import show
 
 _NO_ORDER = Order({}, frozenset())
@@ -68,6 +69,20 @@ class _Frame(NamedTuple):
     """Why others do not, where bars or the brief would have it"""
     stated: Stated
     order: Order
+    level: Mapping[str, Sequence[Contact]]
+    """Of beams, those that cross at one level"""
+
+
+class _Given(NamedTuple):
+    """What frames are made of."""
+
+    judged: Mapping[str, Sequence[Judged]]
+    bodies: Mapping[str, Spanning]
+    carriers: Carriers
+    keys: Sequence[str]
+    """Of beams with a body that was read"""
+    stated: Stated
+    runs_through: RunsThrough
 
 
 def find_lines(
@@ -106,20 +121,12 @@ def find_lines(
     members = {member.step_id: member for member in model.members}
     bodies = all_spanning(model.beams, members, others)
     carriers = carriers_of(model.members, judged, model.beams)
-    crossed = crossings(judged, bodies)
-    clusters = {
-        key: without_free(
-            clusters_of(body, judged[key], carriers, crossed.deeper.get(key, {})),
-            stated.get(key, {}),
-        )
-        for key, body in bodies.items()
-    }
     keys = [beam.key for beam in model.beams if beam.axis is not None and beam.runs]
-    meeting = meeting_ends({key: clusters[key] for key in keys}, bodies)
-    joints = continuous_joints(meeting, clusters, runs_through)
-    fastened = corbels(judged, bodies)
-    frame = _Frame(bodies, clusters, meeting, joints, {}, stated, _NO_ORDER)
-    frame, seats = _stood(frame, stated_apart(joints, stated), fastened)
+    steps = {body.step: key for key, body in bodies.items()}
+    firm = {one.step_id for one in model.out_of_scope if one.reason in STANDING_USES}
+    feet = feet_of(model.members, judged, steps, firm, load_bearing)
+    given = _Given(judged, bodies, carriers, keys, stated, runs_through)
+    frame, seats = _with_columns(given, feet)
     unknown = _unknown(frame, keys, seats)
     spans = {
         key: tuple(_spans(frame, key, seats[key], unknown)) for key in keys if key not in unknown
@@ -129,9 +136,41 @@ def find_lines(
         unknown=unknown,
         seats=seats,
         order=_carriers_first(seats, frame.order),
-        doubts=_doubts(frame, crossed.level, spans),
+        doubts=_doubts(frame, spans),
         remarks={key: tuple(_remarks(frame, seats[key], own)) for key, own in spans.items()},
     )
+
+
+def _with_columns(given: _Given, feet: Feet) -> tuple[_Frame, dict[str, tuple[Seat, ...]]]:
+    """What stands and on what; columns stand on beams once those do."""
+    standing: set[int] = set()
+    while True:
+        doubts = {step: why for step, why in feet.doubts.items() if step not in standing}
+        frame, seats = _framed(given, with_doubts(given.judged, doubts))
+        beams = frame.order.rounds.keys()
+        now = {step for step, under in feet.on_beams.items() if under & beams}
+        if now <= standing:
+            return frame, seats
+        standing |= now
+
+
+def _framed(
+    given: _Given, judged: Mapping[str, Sequence[Judged]]
+) -> tuple[_Frame, dict[str, tuple[Seat, ...]]]:
+    """What stands and on what, by contacts with all that speaks against them."""
+    _, bodies, carriers, keys, stated, runs_through = given
+    crossed = crossings(judged, bodies)
+    clusters = {
+        key: without_free(
+            clusters_of(body, judged[key], carriers, crossed.deeper.get(key, {})),
+            stated.get(key, {}),
+        )
+        for key, body in bodies.items()
+    }
+    meeting = meeting_ends({key: clusters[key] for key in keys}, bodies)
+    joints = continuous_joints(meeting, clusters, runs_through)
+    frame = _Frame(bodies, clusters, meeting, joints, {}, stated, _NO_ORDER, crossed.level)
+    return _stood(frame, stated_apart(joints, stated), corbels(judged, bodies))
 
 
 def _stood(
@@ -212,11 +251,9 @@ def _why_not(frame: _Frame, key: str, seats: Sequence[Seat], unknown: Mapping[st
     return ""
 
 
-def _doubts(
-    frame: _Frame, level: Mapping[str, Sequence[Contact]], standing: Iterable[str]
-) -> dict[str, tuple[Reason, ...]]:
+def _doubts(frame: _Frame, standing: Iterable[str]) -> dict[str, tuple[Reason, ...]]:
     """What may bear on beams beside what rests on them."""
-    found = {key: list(map(told.crossing, own)) for key, own in level.items()}
+    found = {key: list(map(told.crossing, own)) for key, own in frame.level.items()}
     standing = set(standing)
     for key in standing:
         for other in [frame.joints[key, end][0] for end in ENDS if (key, end) in frame.joints]:
