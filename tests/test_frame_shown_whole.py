@@ -55,11 +55,12 @@ def framed_of(run: pipeline.Run) -> Framed:
 
 
 def test_what_reaches_the_ground_is_what_the_brief_puts_on_the_beams(run: pipeline.Run) -> None:
-    """Summed anew from the loads that stand on beams, without those that beams give each other."""
+    """Summed anew from the loads that stand on beams, without those that beams give each
+    other, and those that move."""
     framed, gathered = framed_of(run), run.rated[0].gathered
     put: dict[str, float] = {}
     for load in gathered.loads:
-        passed = load.origin.startswith("reaction of ")
+        passed = load.origin.startswith("reaction of ") or load.case in framed.moving
         if load.beam in framed.lines and not passed and load.kind != "moment":
             length = load.end - load.start if load.kind == "line" else 1.0
             mean = sum(load.values) / 2.0 if load.kind == "line" else load.values[0]
