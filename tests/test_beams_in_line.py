@@ -102,7 +102,7 @@ SEATS: Mapping[str, Sequence[Row]] = {
     ],
     "THIN": [
         ("start", 200, 0, 400, "V3", BELOW, True),
-        ("between", 4000, 3850, 4150, "DEEP", THROUGH, False),
+        ("between", 4000, 3700, 4300, "DEEP", THROUGH, False),
         ("end", 7800, 7600, 8000, "V4", BELOW, True),
     ],
 }

@@ -198,3 +198,23 @@ def test_an_end_face_that_grazes_its_carrier_is_not_carried() -> None:
         beam = lying("S", (x, 150, 3100), (x, 5000, 3100))
         stood = stand(read([*girder, beam, column("3", x, 4800, (0.0, 3100.0))]))
         assert (stood.key("S") not in stood.lines.unknown) is holds
+
+
+# Beams that cross ----------------------------------------------------------------------------
+
+
+@pytest.mark.parametrize(("length", "carries"), [(7000.0, False), (2400.0, True)])
+def test_the_deeper_of_two_that_cross_carries_where_it_is_stiffer_too(
+    length: float, carries: bool
+) -> None:
+    """A beam of 1200 x 480 over 4.6 m through one of 250 x 650: by b h^3 / L^3 the deeper one is
+    0.15 times as stiff at a length of 7 m and 4.6^3 / 2.4^3 x 0.52 = 3.6 times at 2.4 m; at a
+    width of 600 mm it is 8.7 times as stiff."""
+    width = 600.0 if carries else 250.0
+    deep = lying("DEEP", (6000 - length / 2, 0, 3000), (6000 + length / 2, 0, 3000), 650, width)
+    thin = lying("THIN", (6000, -2500, 3000), (6000, 2500, 3000), 480, 1200)
+    feet = [column("1", 6200 - length / 2, 0), column("2", 5800 + length / 2, 0)]
+    ends = [column("3", 6000, -2300), column("4", 6000, 2300)]
+    stood = stand(read([deep, thin, *feet, *ends]))
+    assert [row[4] for row in stood.rows("THIN")] == (["3", "DEEP", "4"] if carries else ["3", "4"])
+    assert bool(stood.lines.doubts) is not carries

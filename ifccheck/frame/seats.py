@@ -8,6 +8,7 @@ carries the other; where neither does, nothing tells which.
 from __future__ import annotations
 
 from collections.abc import Iterable, Iterator, Mapping, Sequence
+from itertools import pairwise
 from operator import attrgetter
 from typing import Literal, NamedTuple
 
@@ -28,7 +29,10 @@ BUILT_IN_WIDTH = 0.5
 """... and that is so many times as thick along the beam as that is deep."""
 
 DEEPER = 1.25
-"""A beam so many times as deep as one that crosses it is about twice as stiff, and carries it."""
+"""A beam so many times as deep as one that crosses it carries it, if ..."""
+
+STIFFER = 8.0
+"""... it is so many times as stiff: all but a ninth of what they share then goes to it."""
 
 LOWER = 0.25
 """A beam lies lower than one that crosses it by so much of the lesser depth, or carries not."""
@@ -333,11 +337,12 @@ def crossings(judged: Mapping[str, Sequence[Judged]], bodies: Mapping[str, Spann
         if (other_step, step) not in passing or _parallel(own, other):
             continue
         back = passing[other_step, step][2]
-        carries = _carries(other, _middle(back), own, _middle(contact))
-        if carries:
+        held = _carries(other, _middle(back), own, _middle(contact))
+        if held and _is_stiffer(other, own, judged[key]):
             deeper.setdefault(key, {})[other_step] = carrier
-        elif not (
-            _carries(own, _middle(contact), other, _middle(back)) or _stands(judged[key], contact)
+        elif not _stands(judged[key], contact) and not (
+            _carries(own, _middle(contact), other, _middle(back))
+            and _is_stiffer(own, other, judged[carrier])
         ):
             level[key] = (*level.get(key, ()), contact)
     return Crossings(deeper, level)
@@ -350,6 +355,28 @@ def _stands(judged: Sequence[Judged], crossing: Contact) -> bool:
         for contact, carrier in judged
         if contact.start <= crossing.end and contact.end >= crossing.start
     )
+
+
+def _is_stiffer(other: Spanning, own: Spanning, judged: Sequence[Judged]) -> bool:
+    """Whether a beam is stiff enough to carry another, of which the contacts are given."""
+    span = _greatest_span(own, judged)
+    return _stiffness(other, other.length) >= STIFFER * _stiffness(own, span)
+
+
+def _stiffness(body: Spanning, span: float) -> float:
+    """I / L^3 of a beam by its box [mm]."""
+    return body.width * body.depth**3 / 12.0 / span**3
+
+
+def _greatest_span(body: Spanning, judged: Sequence[Judged]) -> float:
+    """The greatest distance between what stands under a beam, or its length [mm]."""
+    places = sorted(
+        _middle(contact)
+        for contact, carrier in judged
+        if contact.bears and not contact.doubt and carrier is None
+        if contact.side in ("below", "end")
+    )
+    return max((b - a for a, b in pairwise(places)), default=body.length) or body.length
 
 
 def _middle(contact: Contact) -> float:

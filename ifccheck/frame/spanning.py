@@ -23,6 +23,8 @@ class Spanning(NamedTuple):
     """[mm]"""
     depth: float
     """[mm]"""
+    width: float
+    """[mm]"""
 
     def place(self, x: float) -> Vector:
         """The soffit's middle at a place along it [mm]."""
@@ -60,11 +62,20 @@ def all_spanning(
 def spanning_of(beam: Beam) -> Spanning:
     """A beam with an axis and runs."""
     assert beam.axis is not None
-    *_, low, high = section_extent(beam)
+    right, left, low, high = section_extent(beam)
     (x, y, z), up = beam.axis.origin, beam.axis.z
     origin = (x + low * up[0], y + low * up[1], z + low * up[2])
     told = f"{beam.mark} ({beam.ifc_class})"
-    return Spanning(beam.key, beam.step_id, told, origin, beam.axis.x, beam.axis.length, high - low)
+    return Spanning(
+        beam.key,
+        beam.step_id,
+        told,
+        origin,
+        beam.axis.x,
+        beam.axis.length,
+        high - low,
+        left - right,
+    )
 
 
 def _of_box(key: str, member: Member) -> Spanning:
@@ -79,4 +90,5 @@ def _of_box(key: str, member: Member) -> Spanning:
         for centre, a, u in zip(box.centre, x, box.axes[up], strict=True)
     )
     told = f"{member.name or member.guid} ({member.ifc_class})"
-    return Spanning(key, member.step_id, told, (cx, cy, cz), x, 2.0 * half[along], 2.0 * half[up])
+    length, depth, width = (2.0 * half[row] for row in (along, up, 3 - along - up))
+    return Spanning(key, member.step_id, told, (cx, cy, cz), x, length, depth, width)
