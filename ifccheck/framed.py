@@ -6,7 +6,7 @@ Named tuples of plain facts only; no beam or member of the model hangs on them.
 from __future__ import annotations
 
 from collections.abc import Iterator, Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from typing import NamedTuple
 
 from ifccheck.beam import EndKind
@@ -120,6 +120,8 @@ class Framed:
     """Keys of the beams of which loads and reactions are not in the balance"""
     moving: tuple[str, ...] = ()
     """Cases that are not in the balance because they move"""
+    carriers: Mapping[str, Mapping[str, str]] = field(default_factory=dict)
+    """Marks of the beams that carry each, and that carry those, down to the ground, by key"""
 
     @property
     def all_lines(self) -> Iterator[FramedLine]:

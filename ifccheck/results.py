@@ -17,6 +17,7 @@ from ifccheck.publish.report import Assumption, CaseSummary, Report
 from ifccheck.publish.words import CURES, NO_LOAD, head_of
 from ifccheck.rating.answers import ratings_of, unrated, unstated_stirrups
 from ifccheck.rating.batch import Batch
+from ifccheck.rating.carriers import told_of_carriers
 from ifccheck.rating.in_line import held_by_lines
 from ifccheck.rating.results import Rating
 from ifccheck.rating.subject import Subject, Unrated
@@ -54,6 +55,7 @@ def report_of(
     answers |= {each.beam.key: unrated(each, standard) for each in gathered.unrated}
     if gathered.framed:
         answers = held_by_lines(answers, gathered.framed.joined)
+        answers = told_of_carriers(answers, gathered.framed.carriers)
     ratings = {beam.key: answers[beam.key] for beam in model.beams}
     return Report(
         version=version,

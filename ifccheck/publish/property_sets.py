@@ -91,6 +91,7 @@ def _result(rating: Rating, of_run: Properties) -> Properties:
         *(_text("LeastRatedCase", "label", least.case) if least else ()),
         *_covered(rating.checked, rating.not_checked),
         *_text("Reason", "text", "; ".join([reason.text for reason in rating.reasons])),
+        *_text("Doubts", "text", "; ".join([r.text for r in rating.remarks if r.kind == "doubt"])),
         *of_run,
     )
 

@@ -20,7 +20,34 @@ def framed(framing: Framing) -> Framed:
     shown = _framed(lines, framing.unknown, framing.beams)
     solved = {each.key for line in path.solved for each in line.beams}
     left_out = tuple(key for key in framing.beams if key not in solved)
-    return replace(shown, balance=_summed(path.balance), left_out=left_out, moving=path.moving)
+    return replace(
+        shown,
+        balance=_summed(path.balance),
+        left_out=left_out,
+        moving=path.moving,
+        carriers=_carriers(path.resting, framing.beams),
+    )
+
+
+def _carriers(
+    resting: Mapping[str, Iterable[str]], beams: Mapping[str, Beam]
+) -> dict[str, dict[str, str]]:
+    """Marks of all beams between each and the ground, by key."""
+    under: dict[str, list[str]] = {}
+    for carrier, own in resting.items():
+        for key in own:
+            under.setdefault(key, []).append(carrier)
+    found = {}
+    for key in under:
+        below: dict[str, str] = {}
+        waiting = under[key][::-1]
+        while waiting:
+            carrier = waiting.pop()
+            if carrier not in below:
+                below[carrier] = beams[carrier].mark
+                waiting += under.get(carrier, ())
+        found[key] = below
+    return found
 
 
 def framed_by_the_model(model: Model) -> Framed:

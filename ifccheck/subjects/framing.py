@@ -30,6 +30,10 @@ ONE_OF_SEVERAL = Reason(
     "supports unknown: its span is stated, but it makes several or goes on into another beam; state"
     " its supports instead"
 )
+_CAST_IN = (
+    "ends that run into columns or walls count as pinned: no moment is asked of them there, nor of"
+    " those (restraint under [frame])"
+)
 _HANGERS = "frames into its side: the hanger steel there is not checked"
 
 
@@ -221,6 +225,14 @@ def _over(contact: Contact, seat: Seat, past: float) -> bool:
     if not seat.low - TOLERANCE <= middle <= seat.high + TOLERANCE:
         return False
     return contact.start >= seat.low - past and contact.end <= seat.high + past
+
+
+def cast_in(framing: Framing, key: str) -> Iterator[Remark]:
+    """What is assumed of ends that run into columns or walls and count as pinned."""
+    spans = framing.standing[key].spans
+    kinds = {"start": spans[0].span.start_support.kind, "end": spans[-1].span.end_support.kind}
+    if any(s.built_in and kinds.get(s.place) == "pinned" for s in framing.lines.seats[key]):
+        yield Remark(key, "supports", _CAST_IN, "assumption")
 
 
 def hangers(framing: Framing, key: str) -> Iterator[Remark]:

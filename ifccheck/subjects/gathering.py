@@ -51,6 +51,7 @@ from ifccheck.subjects.floors import NO_FLOOR_LOADS, FloorLoads, floor_loads
 from ifccheck.subjects.framed import framed
 from ifccheck.subjects.framing import (
     Framing,
+    cast_in,
     hangers,
     stand_in_building,
     with_doubts,
@@ -303,6 +304,7 @@ def _judge_standing(
         if sources.framing:
             findings.reasons += sources.framing.lines.doubts.get(beam.key, ())
             findings.remarks += hangers(sources.framing, beam.key)
+            findings.remarks += cast_in(sources.framing, beam.key)
         kinds = {end.kind for end in standing.ends}
         if varies(beam.runs) and kinds & {"fixed", "continuous"} and "free" not in kinds:
             findings.remarks.append(Remark(beam.key, "demand", _VARYING_STIFFNESS, "assumption"))
