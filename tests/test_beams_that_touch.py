@@ -142,3 +142,21 @@ def _sloping(
     place = building.placement(origin, (x, y, z), left)
     product = building.member("IfcBeam", solid, placement=place, Name=name)
     building.give_material(product, building.entity("IfcMaterial", "Concrete C30/37"))
+
+
+@pytest.mark.parametrize(("depth", "soft"), [(300.0, True), (2000.0, False)])
+def test_a_cantilever_whose_tip_meets_a_soft_beam_is_not_adequate(
+    depth: float, soft: bool, tmp_path: Path
+) -> None:
+    """K is built into a column and meets the middle of EDGE, which spans 9.7 m: 48 E I / L^3 of
+    300 x 300 is far below 8 x 3 E I / L^3 of K (300 x 600, 2.5 m), that of 300 x 2000 above it."""
+    beams = [
+        lying("K", (300.0, 0.0, 0.0), 2500.0),
+        lying("EDGE", (2950.0, -5000.0, 300.0 - depth / 2.0), 10000.0, 90.0, depth=depth),
+    ]
+    foot = 300.0 - depth / 2.0
+    columns = [MadeColumn(0.0, size=600.0, z=(-3000.0, 1500.0))]
+    columns += [MadeColumn(2950.0, y, z=(-3000.0, foot)) for y in (-4850.0, 4850.0)]
+    run = rated_frame(tmp_path, beams, columns, uniform("floor", 2.0))
+    told = "; ".join(reason.text for reason in sheets_of(run)["K"].rating.reasons)
+    assert ("may hang over from its other end" in told) is soft, told

@@ -14,7 +14,6 @@ from ifccheck.frame import told
 from ifccheck.frame.beam_lines import BeamLine, LineSpan, SpanEnd, chains
 from ifccheck.frame.bearing import bearing_of, with_bearing, with_doubts
 from ifccheck.frame.carrying import ENDS, STANDING_USES, End, Judged, Stated, judged_contacts
-from ifccheck.frame.contacts import TOLERANCE
 from ifccheck.frame.feet import Feet, feet_of
 from ifccheck.frame.ground_up import Joint, Order, order_of, told_against, without_free
 from ifccheck.frame.joints import (
@@ -26,6 +25,7 @@ from ifccheck.frame.joints import (
     stated_apart,
 )
 from ifccheck.frame.seats import (
+    STIFFER,
     Cluster,
     Place,
     Seat,
@@ -33,6 +33,7 @@ from ifccheck.frame.seats import (
     corbels,
     crossings,
     seat_of,
+    stiffness,
 )
 from ifccheck.frame.spanning import Spanning, all_spanning
 from ifccheck.frame.stretches import Carriers, carriers_of
@@ -55,6 +56,12 @@ class Lines(NamedTuple):
     """On beams that cross others at one level, that go on into beams that do not stand, or that
     may go on into what stands on something else"""
     remarks: Mapping[str, tuple[Remark, ...]]
+
+
+SHORT = 100.0
+"""A beam that reaches so far past the outer face of its support ends on it [mm] ..."""
+SHORT_PART = 0.25
+"""... if that is no more than this part of its depth: its load there goes into the support."""
 
 
 class _Frame(NamedTuple):
@@ -136,7 +143,7 @@ def find_lines(
         unknown=unknown,
         seats=seats,
         order=_carriers_first(seats, frame.order),
-        doubts=_doubts(frame, spans),
+        doubts=_doubts(frame, spans, seats),
         remarks={key: tuple(_remarks(frame, seats[key], own)) for key, own in spans.items()},
     )
 
@@ -251,7 +258,9 @@ def _why_not(frame: _Frame, key: str, seats: Sequence[Seat], unknown: Mapping[st
     return ""
 
 
-def _doubts(frame: _Frame, standing: Iterable[str]) -> dict[str, tuple[Reason, ...]]:
+def _doubts(
+    frame: _Frame, standing: Iterable[str], seats: Mapping[str, Sequence[Seat]]
+) -> dict[str, tuple[Reason, ...]]:
     """What may bear on beams beside what rests on them."""
     found = {key: list(map(told.crossing, own)) for key, own in frame.level.items()}
     standing = set(standing)
@@ -259,11 +268,30 @@ def _doubts(frame: _Frame, standing: Iterable[str]) -> dict[str, tuple[Reason, .
         for other in [frame.joints[key, end][0] for end in ENDS if (key, end) in frame.joints]:
             if other not in standing:
                 found.setdefault(key, []).append(told.goes_on_into(frame.bodies[other].told))
+        if soft := _soft_end(frame, key, seats[key]):
+            found.setdefault(key, []).append(soft)
         for end in ENDS:
             if frame.parted.get((key, end)) == ON_ITS_OWN:
                 other = frame.meeting[key, end][0]
                 found.setdefault(key, []).append(_how(end, frame.bodies[other].told))
     return {key: tuple(own) for key, own in found.items()}
+
+
+def _soft_end(frame: _Frame, key: str, seats: Sequence[Seat]) -> Reason | None:
+    """Why a beam that is built in at one end may hang over, though its other end meets a beam.
+
+    That beam holds it up where it gives way much less at its middle, 48 E I / L^3, than this one
+    does as a cantilever, 3 E I / L^3.
+    """
+    if len(seats) != 2 or frame.stated.get(key):
+        return None
+    for built, other in (seats, seats[::-1]):
+        carrier = frame.bodies.get(other.carrier_beam)
+        if built.built_in and carrier is not None and built.place != "between":
+            own, under = (stiffness(each, each.length) for each in (frame.bodies[key], carrier))
+            if 48.0 * under < STIFFER * 3.0 * own:
+                return told.soft(other)
+    return None
 
 
 def _how(end: End, other: str) -> Reason:
@@ -295,24 +323,30 @@ def _spans(
         return
     said = frame.stated.get(key, {})
     kind: EndKind = "continuous"
-    if first.place != "start" and first.low > TOLERANCE:
+    slip = _slip(frame.bodies[key])
+    if first.place != "start" and first.low > slip:
         yield LineSpan(key, SpanEnd("free", 0.0, 0.0), SpanEnd(kind, first.x, first.low, first))
     elif not goes_on.get("start"):
         kind = said.get("start", "pinned")
     for before, after in pairwise(seats):
         start = SpanEnd(kind, before.x, max(before.high, 0.0), before)
         kind = "continuous"
-        if after is last and _ends_at(last, length) and not goes_on.get("end"):
+        if after is last and _ends_at(last, length, slip) and not goes_on.get("end"):
             kind = said.get("end", "pinned")
         yield LineSpan(key, start, SpanEnd(kind, after.x, min(after.low, length), after))
-    if not _ends_at(last, length):
+    if not _ends_at(last, length, slip):
         tip = SpanEnd("free", length, length)
         yield LineSpan(key, SpanEnd("continuous", last.x, last.high, last), tip)
 
 
-def _ends_at(seat: Seat, length: float) -> bool:
+def _ends_at(seat: Seat, length: float, slip: float) -> bool:
     """Whether a beam does not hang over past its last seat."""
-    return seat.place == "end" or seat.high >= length - TOLERANCE
+    return seat.place == "end" or seat.high >= length - slip
+
+
+def _slip(body: Spanning) -> float:
+    """What a beam may reach past a support and be no overhang [mm]."""
+    return min(SHORT, SHORT_PART * body.depth)
 
 
 def _cantilever(seat: Seat, length: float) -> LineSpan:

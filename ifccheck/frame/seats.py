@@ -360,10 +360,10 @@ def _stands(judged: Sequence[Judged], crossing: Contact) -> bool:
 def _is_stiffer(other: Spanning, own: Spanning, judged: Sequence[Judged]) -> bool:
     """Whether a beam is stiff enough to carry another, of which the contacts are given."""
     span = _greatest_span(own, judged)
-    return _stiffness(other, other.length) >= STIFFER * _stiffness(own, span)
+    return stiffness(other, other.length) >= STIFFER * stiffness(own, span)
 
 
-def _stiffness(body: Spanning, span: float) -> float:
+def stiffness(body: Spanning, span: float) -> float:
     """I / L^3 of a beam by its box [mm]."""
     return body.width * body.depth**3 / 12.0 / span**3
 

@@ -112,3 +112,12 @@ def _x(x: float) -> str:
 @lru_cache(maxsize=4096)
 def _mm(width: float) -> str:
     return show(width, "dimension")
+
+
+def soft(seat: Seat) -> Reason:
+    """Say that a beam may hang over from its built-in end."""
+    text = (
+        f"{seat.carrier_name} at x = {_x(seat.x)} is not much stiffer than this beam as a"
+        f" cantilever, and it may hang over from its other end{_ANSWER}"
+    )
+    return Reason(text, blocking=False)
