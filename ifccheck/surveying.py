@@ -12,7 +12,7 @@ from ifccheck.brief.silent import silent_brief, with_all_defaults
 from ifccheck.brief.starter import StarterModel, quoted, starter_brief
 from ifccheck.errors import BriefError, UsageError
 from ifccheck.findings import Survey
-from ifccheck.frame.carrying import contacts_of, unheld_ends
+from ifccheck.frame.carrying import contacts_of, touching_in, unheld_ends
 from ifccheck.ifc.requirement import requirement_bytes, unmet_requirements
 from ifccheck.ifc.selection import select
 from ifccheck.ifc.suggestions import bars_in_file, properties_of_steel
@@ -133,7 +133,7 @@ def _starter(surveyed: Iterable[Surveyed]) -> str:
 
 def _starter_model(surveyed: Surveyed) -> StarterModel:
     opened, model = surveyed.read.opened, surveyed.survey.model
-    contacts = contacts_of(model, {})
+    contacts = contacts_of(model, touching_in(model), {})
     unknown = {
         key
         for key, finding in surveyed.survey.findings.items()

@@ -350,3 +350,30 @@ def test_a_beam_that_goes_on_into_one_that_does_not_stand_is_not_adequate(tmp_pa
     assert "supports unknown" in reasons(run, "T2")
     assert verdicts(run)["T1"] is Verdict.NOT_RATED
     assert "it goes on into T2" in reasons(run, "T1")
+
+
+def test_what_the_brief_ignores_holds_no_beam_of_a_frame(tmp_path: Path) -> None:
+    """A pad that is left out of scope lies under B at midspan: once the brief says that it
+    does not hold it, B spans its 7.7 m from column to column."""
+    beams = [
+        lying("B", (0.0, 0.0, 0.0), 8000.0),
+        lying("insulation pad", (4000.0, -500.0, -300.0), 1000.0, 90.0, depth=300.0),
+    ]
+    columns = [MadeColumn(150.0), MadeColumn(7850.0)]
+    ignore = '[[supports]]\nbeams = ["B"]\nignore = ["insulation pad"]\n'
+    entry = uniform("floor", 2.0, "B")
+    run = rated_frame(tmp_path, beams, columns, entry, ignore, COMPLETE.format("B"))
+    (span,) = sheets_of(run)["B"].spans
+    assert span.length == pytest.approx(7700.0)
+
+
+def test_a_member_that_is_ignored_holds_the_beam_nowhere(tmp_path: Path) -> None:
+    """A block 2 m long lies under the start of B and on beyond it: ignored, it is no support at
+    the start either, and B hangs on one column."""
+    long = MadeColumn(1000.0, size=2000.0)
+    ignore = f'[[supports]]\nbeams = ["B"]\nignore = ["{long.name}"]\n'
+    run = rated_frame(
+        tmp_path, [lying("B", (0.0, 0.0, 0.0), 8000.0)], [long, MadeColumn(7850.0)],
+        uniform("floor", 2.0), ignore,
+    )  # fmt: skip
+    assert "supports unknown" in reasons(run, "B")

@@ -8,7 +8,7 @@ from __future__ import annotations
 
 from collections import defaultdict
 from collections.abc import Iterable, Mapping, Sequence, Set
-from typing import Literal
+from typing import Literal, NamedTuple
 
 from ifccheck.beam import Beam, Contact, Model, OutOfScope, SupportKind
 from ifccheck.frame.contacts import contacts_of_others, find_contacts, is_seat
@@ -37,14 +37,28 @@ Judged = tuple[Contact, str | None]
 """A contact, and the key of the beam that would carry by it; None for the ground"""
 
 
-def contacts_of(model: Model, stated: Stated) -> dict[str, tuple[Contact, ...]]:
+class Touching(NamedTuple):
+    """What touches what in a model, before anything is said of what carries."""
+
+    beams: Mapping[str, tuple[Contact, ...]]
+    """Of its beams, by key"""
+    others: Mapping[str, tuple[Contact, ...]]
+    """Of what else spans, by key, or by "#" and step id"""
+
+
+def touching_in(model: Model) -> Touching:
+    """Find what touches the beams of a model and all else that spans in it."""
+    return Touching(
+        find_contacts(model.beams, model.members), contacts_of_others(model.beams, model.members)
+    )
+
+
+def contacts_of(model: Model, touching: Touching, stated: Stated) -> dict[str, tuple[Contact, ...]]:
     """Contacts of every beam of a model, with a doubt on each that nothing shows to carry it.
 
     ``stated`` is what the brief's entries say of ends.
     """
-    contacts = find_contacts(model.beams, model.members)
-    others = contacts_of_others(model.beams, model.members)
-    return carried_contacts(contacts, others, model.beams, model.out_of_scope, stated)
+    return carried_contacts(*touching, model.beams, model.out_of_scope, stated)
 
 
 def unheld_ends(contacts: Sequence[Contact]) -> tuple[End, ...]:

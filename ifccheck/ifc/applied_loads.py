@@ -15,8 +15,6 @@ from ifccheck.ifc.entity import Entity, UnreadableError, get, label, need, sever
 from ifccheck.ifc.load_units import LoadUnits
 from ifccheck.ifc.placements import Matrix
 
-FORCES = ("ForceX", "ForceY", "ForceZ")
-MOMENTS = ("MomentX", "MomentY", "MomentZ")
 ALL_ALONG = ("", "CONST", "NOTDEFINED")
 BY_PLACES = ("", "CONST", "LINEAR", "POLYGONAL", "EQUIDISTANT", "NOTDEFINED")
 """Kinds of curve actions whose values go over into one another in straight lines"""

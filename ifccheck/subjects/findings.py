@@ -9,6 +9,7 @@ from ifccheck.beam import ActionDoubt, Contact, Given, Reason, Remark, Support, 
 from ifccheck.brief.model import Brief
 from ifccheck.brief.statements import BeamStatement, MaterialStatement
 from ifccheck.frame.bar_ends import Surroundings
+from ifccheck.frame.carrying import Touching
 from ifccheck.frame.flanges import Slabs
 from ifccheck.frame.openings import Net
 from ifccheck.rating.runways import Runway
@@ -60,7 +61,9 @@ class Sources:
 
     brief: Brief
     standard: Standard
+    touching: Touching
     contacts: Mapping[str, Sequence[Contact]]
+    """Of the beams, with doubts on what may not carry them"""
     unmeasured: Sequence[Unmeasured]
     statements: Mapping[str, BeamStatement]
     materials: Mapping[str, MaterialStatement]

@@ -8,7 +8,7 @@ from dataclasses import replace
 from ifccheck.beam import Beam, Model, Reason
 from ifccheck.brief.model import FrameOptions
 from ifccheck.frame.beam_lines import BeamLine, LineSpan, SpanEnd
-from ifccheck.frame.contacts import contacts_of_others, find_contacts
+from ifccheck.frame.carrying import touching_in
 from ifccheck.frame.lines import find_lines
 from ifccheck.framed import Balance, Framed, FramedEnd, FramedLine, FramedSpan
 from ifccheck.subjects.framing import Framing, runs_through
@@ -53,8 +53,7 @@ def _carriers(
 def framed_by_the_model(model: Model) -> Framed:
     """What beams would stand on if the model alone told it."""
     beams = {beam.key: beam for beam in model.beams}
-    contacts = find_contacts(model.beams, model.members)
-    others = contacts_of_others(model.beams, model.members)
+    contacts, others = touching_in(model)
     lines = find_lines(model, contacts, others, {}, runs_through(FrameOptions(), beams))
     return _framed(lines.lines, lines.unknown, beams)
 

@@ -17,8 +17,9 @@ from ifccheck.demand.standing import standing_in_lines
 from ifccheck.errors import BriefError
 from ifccheck.frame.beam_lines import BeamLine
 from ifccheck.frame.boxes import section_extent
+from ifccheck.frame.carrying import Touching
 from ifccheck.frame.column_springs import column_stiffness
-from ifccheck.frame.contacts import TOLERANCE, contacts_of_others, find_contacts
+from ifccheck.frame.contacts import TOLERANCE
 from ifccheck.frame.joints import RunsThrough, by_bars
 from ifccheck.frame.lines import Lines, find_lines
 from ifccheck.frame.seats import Seat
@@ -67,6 +68,7 @@ def stand_in_building(
     model: Model,
     brief: Brief,
     matches: Matches,
+    touching: Touching,
     ignored: Mapping[str, Sequence[Contact]],
     spans: Mapping[str, Given],
 ) -> Framing:
@@ -74,17 +76,13 @@ def stand_in_building(
 
     ``ignored`` are contacts that hold no beam, ``spans`` are lengths that the brief states.
     """
-    contacts = {
-        key: [each for each in own if each not in ignored.get(key, ())]
-        for key, own in find_contacts(model.beams, model.members).items()
-    }
-    others = contacts_of_others(model.beams, model.members)
+    contacts = _without(ignored, touching.beams)
     beams = {beam.key: beam for beam in model.beams}
     stated = stated_ends(brief, matches)
     bearing = load_bearing(brief, contacts)
     assert brief.frame is not None
     through = runs_through(brief.frame, beams)
-    shown = find_lines(model, contacts, others, stated, through, bearing)
+    shown = find_lines(model, contacts, touching.others, stated, through, bearing)
     said = _overrules(brief, matches, beams, spans)
     if brief.frame.restraint == "columns":
         said = said._replace(springs=column_springs(model, beams, contacts))
@@ -95,6 +93,17 @@ def stand_in_building(
     sources = dict.fromkeys(stated, "brief, [[supports]]")
     standing = standing_in_lines(lines.lines, beams, lines.remarks, sources)
     return Framing(lines, standing, unknown, beams)
+
+
+def _without(
+    ignored: Mapping[str, Sequence[Contact]], contacts: Mapping[str, Sequence[Contact]]
+) -> Mapping[str, Sequence[Contact]]:
+    """The contacts without any with a member that does not hold the beam, wherever it touches."""
+    left = dict(contacts)
+    for key, own in ignored.items():
+        steps = {each.other_step for each in own}
+        left[key] = [each for each in contacts[key] if each.other_step not in steps]
+    return left
 
 
 def column_springs(

@@ -32,7 +32,7 @@ from ifccheck.brief.supports import (
     stated_ends,
 )
 from ifccheck.frame.bar_ends import Surroundings
-from ifccheck.frame.carrying import contacts_of
+from ifccheck.frame.carrying import contacts_of, touching_in
 from ifccheck.frame.flanges import NO_MEETING, Slabs
 from ifccheck.frame.openings import Net, net_of
 from ifccheck.frame.reactions import loaded_from_side, resting_between
@@ -93,7 +93,9 @@ def gather(model: Model, brief: Brief, matches: Matches, standard: Standard) -> 
     stated = {key: each.span for key, each in sources.statements.items() if each.span}
     framing = None
     if brief.frame:
-        framing = stand_in_building(model, brief, matches, sources.ignored, stated)
+        framing = stand_in_building(
+            model, brief, matches, sources.touching, sources.ignored, stated
+        )
     standing = framing.standing if framing else _standing_alone(beams, sources)
     spans = {key: each.reach for key, each in standing.items()}
     floors = floor_loads(model, brief, matches, standing, brief.basis.concrete_unit_weight)
@@ -121,11 +123,13 @@ def _sources(
     model: Model, brief: Brief, matches: Matches, standard: Standard, beams: Mapping[str, Beam]
 ) -> Sources:
     """What is known of all beams before it is told how they stand."""
-    contacts = contacts_of(model, stated_ends(brief, matches))
+    touching = touching_in(model)
+    contacts = contacts_of(model, touching, stated_ends(brief, matches))
     supports, remarks = _supports(brief, matches, beams, contacts)
     return Sources(
         brief=brief,
         standard=standard,
+        touching=touching,
         contacts=contacts,
         unmeasured=model.unmeasured,
         statements=statements(brief, matches),
